@@ -1,0 +1,100 @@
+package loads
+
+import (
+	"math"
+	"slices"
+	"testing"
+
+	"pgregory.net/rapid"
+)
+
+// course draws ten minutes of readings of the three tags, stamped irregularly,
+// with gaps, and in order of their stamps.
+func course(t *rapid.T) []Reading {
+	var all []Reading
+	for tag := range 3 {
+		s := rapid.Int64Range(0, 5e9).Draw(t, "first")
+		for s < 600e9 {
+			v := rapid.Float64Range(1, 3).Draw(t, "value")
+			if tag != flow {
+				v = 300 + 30*v
+			}
+			all = append(all, Reading{tag, epoch + s, v})
+			s += rapid.Int64Range(1, 9e9).Draw(t, "step")
+			if rapid.IntRange(0, 60).Draw(t, "gap") == 0 {
+				s += 90e9
+			}
+		}
+	}
+	slices.SortStableFunc(all, func(a, b Reading) int { return int(a.At - b.At) })
+	return all
+}
+
+const lateness = 5 * second
+
+// run feeds readings in the given order, cut into beats of the given sizes; each
+// beat comes as far as its newest stamp less the lateness.
+func run(e *Engine, readings []Reading, cut func() int) {
+	var newest int64
+	for len(readings) > 0 {
+		n := min(cut(), len(readings))
+		for _, r := range readings[:n] {
+			newest = max(newest, r.At)
+		}
+		e.Advance(Beat{readings[:n], newest - lateness}, nil)
+		readings = readings[n:]
+	}
+	e.Advance(Beat{nil, epoch + 700*second}, nil)
+}
+
+func fingerprint(e *Engine) []uint64 {
+	var bits []uint64
+	for _, l := range e.Snapshot().Loads {
+		for _, v := range []float64{l.Given, l.Taken, l.Figure.Duty, l.Figure.Uncertainty, l.Means[0].Duty, l.Means[2].Duty, l.Means[2].Coverage} {
+			bits = append(bits, math.Float64bits(v))
+		}
+		bits = append(bits, uint64(l.Measured), uint64(l.Missing))
+	}
+	return bits
+}
+
+// Order within the lateness, the cut into beats and a restart change no bit.
+func TestSameReadingsSameBits(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		cfg := plant(liquid)
+		readings := course(t)
+		plain, _ := New(cfg)
+		run(plain, readings, func() int { return 1 })
+		want := fingerprint(plain)
+
+		shuffled := slices.Clone(readings)
+		jitter := make(map[Reading]int64)
+		for _, r := range shuffled {
+			jitter[r] = r.At + rapid.Int64Range(0, lateness-1).Draw(t, "delay")
+		}
+		slices.SortStableFunc(shuffled, func(a, b Reading) int { return int(jitter[a] - jitter[b]) })
+		cut := func() int { return rapid.IntRange(1, 50).Draw(t, "beat") }
+
+		e, _ := New(cfg)
+		stop := rapid.IntRange(0, len(shuffled)).Draw(t, "stop")
+		var newest int64
+		for _, r := range shuffled[:stop] {
+			newest = max(newest, r.At)
+		}
+		e.Advance(Beat{shuffled[:stop], newest - lateness}, nil)
+		state, err := e.Save()
+		if err != nil {
+			t.Fatal(err)
+		}
+		again, _ := New(cfg)
+		if err := again.Restore(state); err != nil {
+			t.Fatal(err)
+		}
+		again.Recall(shuffled[:stop])
+		back := max(0, stop-20) // what the broker delivers a second time
+		run(again, shuffled[back:], cut)
+		if got := fingerprint(again); !slices.Equal(got, want) {
+			t.Fatalf("after a shuffle, a restart at %d and other beats: %x, want %x", stop, got, want)
+		}
+	})
+}

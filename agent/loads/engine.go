@@ -1,0 +1,222 @@
+package loads
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+// Windows are the lengths of the rolling means, ns, in the order of
+// [LoadState.Means].
+var Windows = [...]int64{minute, 15 * minute, 60 * minute}
+
+// Engine computes the loads of one plant. It is not safe for use by several
+// goroutines at once.
+type Engine struct {
+	cfg     Config
+	next    int64 // the next grid point to compute; 0 before the first reading
+	through int64
+	tags    []tagState
+	loads   []loadState
+	tally   []Tally
+	users   [][]int // loads that read each tag
+}
+
+// loadState is what the engine keeps of one load.
+type loadState struct {
+	Registers Registers
+	Windows   [len(Windows)]Window
+	Minute    minuteSum
+	figure    Figure
+	fresh     bool // figure was worked from the values held now
+}
+
+// Tally counts what became of a tag's readings.
+type Tally struct{ Repeated, Late, Crowded uint64 }
+
+// New returns an engine without history. The error names what in cfg cannot be
+// computed with.
+func New(cfg Config) (*Engine, error) {
+	if cfg.Grid <= 0 || minute%cfg.Grid != 0 {
+		return nil, fmt.Errorf("grid of %g s does not divide a minute", float64(cfg.Grid)/1e9)
+	}
+	e := &Engine{
+		cfg:   cfg,
+		tags:  make([]tagState, len(cfg.Tags)),
+		loads: make([]loadState, len(cfg.Loads)),
+		tally: make([]Tally, len(cfg.Tags)),
+		users: make([][]int, len(cfg.Tags)),
+	}
+	for i := range e.loads {
+		e.enlist(i)
+		for k, length := range Windows {
+			e.loads[i].Windows[k] = newWindow(length, cfg.Grid)
+		}
+	}
+	return e, nil
+}
+
+// enlist notes which tags a load reads.
+func (e *Engine) enlist(load int) {
+	s := &e.cfg.Loads[load].Stream
+	for _, src := range [...]Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure} {
+		if src.Tag >= 0 && !slices.Contains(e.users[src.Tag], load) {
+			e.users[src.Tag] = append(e.users[src.Tag], load)
+		}
+	}
+}
+
+// Advance takes in one beat and books every grid interval that ends at or before
+// b.Through. It appends the minutes that closed to closed and returns it.
+// Event time never runs back: an earlier Through than the last is ignored.
+func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
+	for _, r := range b.Readings {
+		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked()))
+	}
+	e.through = max(e.through, b.Through)
+	if e.next == 0 && !e.begin() {
+		return closed
+	}
+	for e.next+e.cfg.Grid <= e.through {
+		g := e.next
+		e.reach(g)
+		span := e.cfg.Grid
+		if !e.evaluateAll(g) {
+			span = e.silence(g)
+		}
+		closed = e.book(g, span, closed)
+		e.next = g + span
+	}
+	return closed
+}
+
+// Recall marks readings as taken without taking them: after a restart, those of
+// the last beats before the saved state, so that a broker's second delivery of
+// them counts as repeated and not as late.
+func (e *Engine) Recall(readings []Reading) {
+	for _, r := range readings {
+		e.tags[r.Tag].remember(r.At)
+	}
+}
+
+// booked returns the newest grid point computed, or a time before all others.
+func (e *Engine) booked() int64 {
+	if e.next == 0 {
+		return math.MinInt64
+	}
+	return e.next - e.cfg.Grid
+}
+
+func (e *Engine) count(tag int, r Receipt) {
+	switch r {
+	case Repeated:
+		e.tally[tag].Repeated++
+	case Late:
+		e.tally[tag].Late++
+	case Crowded:
+		e.tally[tag].Crowded++
+	}
+}
+
+// begin sets the first grid point once event time has reached the earliest
+// reading; without any reading the accounts begin where event time stands.
+func (e *Engine) begin() bool {
+	first := int64(math.MaxInt64)
+	for i := range e.tags {
+		if p := e.tags[i].Pending; len(p) > 0 {
+			first = min(first, p[0].At)
+		}
+	}
+	if first == math.MaxInt64 {
+		first = e.through
+	}
+	if first <= 0 || first > e.through {
+		return false
+	}
+	e.next = floor(first+e.cfg.Grid-1, e.cfg.Grid)
+	return true
+}
+
+// reach holds the newest reading of each tag at g and marks the figures that
+// depend on it.
+func (e *Engine) reach(g int64) {
+	for i := range e.tags {
+		t := &e.tags[i]
+		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g) {
+			e.touch(i)
+		}
+	}
+}
+
+func (e *Engine) touch(tag int) {
+	for _, load := range e.users[tag] {
+		e.loads[load].fresh = false
+	}
+}
+
+// evaluateAll brings every figure to g and reports whether any was measured. A
+// figure whose inputs are the same and still held is not worked again.
+func (e *Engine) evaluateAll(g int64) bool {
+	any := false
+	for i := range e.loads {
+		l := &e.loads[i]
+		if !l.fresh || g >= l.figure.Until {
+			l.figure, l.fresh = e.evaluate(&e.cfg.Loads[i], g), true
+		}
+		l.figure.At = g
+		any = any || l.figure.Measured()
+	}
+	return any
+}
+
+// silence returns how long from g on nothing can change while no load has a
+// figure: up to the next waiting reading, the end of the minute, or the end of
+// event time, on the grid.
+func (e *Engine) silence(g int64) int64 {
+	until := min(floor(g, minute)+minute, floor(e.through, e.cfg.Grid))
+	for i := range e.tags {
+		if p := e.tags[i].Pending; len(p) > 0 {
+			until = min(until, floor(p[0].At+e.cfg.Grid-1, e.cfg.Grid))
+		}
+	}
+	return max(until-g, e.cfg.Grid)
+}
+
+// book adds the figures at g, good for span, to the accounts.
+func (e *Engine) book(g, span int64, closed []Minute) []Minute {
+	for i := range e.loads {
+		l := &e.loads[i]
+		if l.Minute.Begun && g >= l.Minute.Sum.Start+minute {
+			closed = l.closeMinute(i, closed)
+		}
+		l.book(g, span)
+		if g+span >= l.Minute.Sum.Start+minute {
+			closed = l.closeMinute(i, closed)
+		}
+	}
+	return closed
+}
+
+func (l *loadState) closeMinute(load int, closed []Minute) []Minute {
+	if m, ok := l.Minute.close(load); ok {
+		closed = append(closed, m)
+	}
+	return closed
+}
+
+func (l *loadState) book(g, span int64) {
+	f := &l.figure
+	l.Minute.book(f, g, span)
+	if !f.Measured() {
+		l.Registers.Missing += span
+		for k := range l.Windows {
+			l.Windows[k].book(g, 0, 0)
+		}
+		return
+	}
+	heat := f.Duty * (float64(span) / 1e9)
+	l.Registers.book(heat, span)
+	for k := range l.Windows {
+		l.Windows[k].book(g, heat, span)
+	}
+}

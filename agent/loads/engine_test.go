@@ -1,0 +1,249 @@
+package loads
+
+import (
+	"math"
+	"strings"
+	"testing"
+
+	"heatreeve/thermo"
+)
+
+func TestConstantDutyBooksDutyTimesTime(t *testing.T) {
+	e := engine(t, plant(liquid))
+	for s := 0.0; s <= 600; s += 10 {
+		e.Advance(Beat{at(s, 2, 350, 330), through(s)}, nil)
+	}
+	l := e.Snapshot().Loads[0]
+	near(t, "duty", l.Figure.Duty, 2*4000*20, 0)
+	near(t, "given", l.Given, 160e3*600, 0)
+	near(t, "taken", l.Taken, 0, 0)
+	if l.Measured != 600*second || l.Missing != 0 {
+		t.Errorf("measured %d ns, missing %d ns; want 600 s and 0", l.Measured, l.Missing)
+	}
+	for k, m := range l.Means {
+		near(t, "mean duty", m.Duty, 160e3, 1e-6)
+		want := math.Min(1, 600e9/float64(Windows[k]))
+		near(t, "coverage", m.Coverage, want, 0.02) // the window moves in sixtieths
+	}
+}
+
+// The register holds each figure over its interval, so a ramp of temperature
+// read every second comes out as the left sum, half a step from the integral.
+func TestRampAgainstClosedForm(t *testing.T) {
+	for _, grid := range []int64{second, 5 * second, 20 * second} {
+		cfg := plant(liquid)
+		cfg.Grid = grid
+		e := engine(t, cfg)
+		for s := 0.0; s <= 1200; s++ {
+			e.Advance(Beat{at(s, 3, 330+s/100, 330), through(s)}, nil)
+		}
+		n := float64(1200*second) / float64(grid)
+		h := float64(grid) / 1e9
+		want := 3 * 4000 * (h / 100) * h * n * (n - 1) / 2 // Σ q·cp·k·h/100·h
+		near(t, "given", e.Snapshot().Loads[0].Given, want, 1e-9*want)
+		integral := 3.0 * 4000 * 1200 * 1200 / 200
+		near(t, "distance to the integral", integral-want, 3*4000*12*h/2, 1)
+	}
+}
+
+// The product is integrated, not the product of means: flows 1, 2, 3, 2 kg/s and
+// differences 30, 20, 10, 20 K give 35, where the means give 40 (closed form).
+func TestProductOfMeansIsNotTaken(t *testing.T) {
+	e := engine(t, plant(liquid))
+	for i, q := range []float64{1, 2, 3, 2} {
+		d := []float64{30, 20, 10, 20}[i]
+		e.Advance(Beat{at(float64(i), q, 330+d, 330), through(float64(i))}, nil)
+	}
+	e.Advance(Beat{nil, through(4)}, nil)
+	near(t, "mean of q·Δ", e.Snapshot().Loads[0].Given/4000/4, 35, 1e-12)
+}
+
+// Irregular readings held: 100, 120, 90, 150, 150 kW from 0, 10, 25, 40, 70 s to
+// 90 s are 11,650 kJ (arithmetic: 1000+1800+1350+4500+3000). Held for at most 20
+// s, the ten seconds from 60 to 70 s are missing and their 1,500 kJ with them.
+func TestHoldAndMaximumAge(t *testing.T) {
+	for _, tt := range []struct {
+		age               int64
+		heat              float64
+		measured, missing int64
+	}{
+		{minute, 11650e3, 90 * second, 0},
+		{20 * second, 10150e3, 80 * second, 10 * second},
+	} {
+		cfg := plant(liquid)
+		for i := range cfg.Tags {
+			cfg.Tags[i].MaxAge = tt.age
+		}
+		e := engine(t, cfg)
+		for i, s := range []float64{0, 10, 25, 40, 70} {
+			kW := []float64{100, 120, 90, 150, 150}[i]
+			e.Advance(Beat{at(s, kW*1e3/4000/20, 350, 330), through(s)}, nil)
+		}
+		e.Advance(Beat{nil, through(90)}, nil)
+		l := e.Snapshot().Loads[0]
+		near(t, "heat", l.Given, tt.heat, 1e-3)
+		if l.Measured != tt.measured || l.Missing != tt.missing {
+			t.Errorf("max age %d s: measured %d s, missing %d s; want %d, %d", tt.age/second, l.Measured/second, l.Missing/second, tt.measured/second, tt.missing/second)
+		}
+	}
+}
+
+func TestEachTagKeepsItsOwnAge(t *testing.T) {
+	cfg := plant(liquid)
+	cfg.Tags[outlet].MaxAge = 5 * second
+	e := engine(t, cfg)
+	e.Advance(Beat{at(0, 2, 350, 330), through(10)}, nil)
+	l := e.Snapshot().Loads[0]
+	if l.Figure.Fault != Stale || !strings.Contains(l.Figure.Reason, `"TO"`) {
+		t.Errorf("fault %v, reason %q; want stale, naming TO", l.Figure.Fault, l.Figure.Reason)
+	}
+	if l.Measured != 5*second || l.Missing != 5*second {
+		t.Errorf("measured %d s, missing %d s; want 5 and 5", l.Measured/second, l.Missing/second)
+	}
+}
+
+func TestGapIsMissingAndInventsNothing(t *testing.T) {
+	e := engine(t, plant(liquid))
+	e.Advance(Beat{at(0, 2, 350, 330), through(0)}, nil)
+	week := 7 * 24 * 3600.0
+	closed := e.Advance(Beat{at(week, 2, 350, 330), through(week + 60)}, nil)
+	l := e.Snapshot().Loads[0]
+	near(t, "given", l.Given, 160e3*120, 1e-6)
+	if l.Measured != 120*second || l.Missing != int64(week-60)*second {
+		t.Errorf("measured %d s, missing %d s; want 120, %d", l.Measured/second, l.Missing/second, int64(week-60))
+	}
+	if len(closed) != 2 {
+		t.Errorf("%d minutes closed, want the 2 that were measured", len(closed))
+	}
+	near(t, "coverage of the hour", l.Means[2].Coverage, 1.0/60, 1e-3)
+}
+
+func TestSignsAndServices(t *testing.T) {
+	for _, tt := range []struct {
+		gives        bool
+		in, out      float64
+		given, taken float64
+	}{
+		{true, 350, 330, 160e3, 0}, // a heating circuit that heats
+		{true, 330, 350, 0, 160e3}, // and one that is heated instead
+		{false, 280, 290, 80e3, 0}, // a chilled circuit that takes heat
+		{false, 290, 280, 0, 80e3},
+	} {
+		cfg := plant(liquid)
+		cfg.Loads[0].Stream.Gives = tt.gives
+		e := engine(t, cfg)
+		e.Advance(Beat{at(0, 2, tt.in, tt.out), through(1)}, nil)
+		l := e.Snapshot().Loads[0]
+		near(t, "given", l.Given, tt.given, 1e-6)
+		near(t, "taken", l.Taken, tt.taken, 1e-6)
+	}
+}
+
+func TestFaults(t *testing.T) {
+	for _, tt := range []struct {
+		name      string
+		q, ti, to float64
+		fluid     steady
+		idleBelow float64
+		fault     Fault
+		idle      bool
+		inReason  string
+	}{
+		{name: "stopped pump", q: 0, ti: 900, to: 1, fluid: liquid, idle: true},
+		{name: "zero drift within the threshold", q: -0.01, ti: 350, to: 330, fluid: liquid, idleBelow: 0.02, idle: true},
+		{name: "reverse", q: -0.5, ti: 350, to: 330, fluid: liquid, idleBelow: 0.02, fault: Reverse, inReason: "-0.5"},
+		{name: "near boiling", q: 2, ti: 416, to: 330, fluid: liquid, fault: Saturation, inReason: "boiling at 146.85 °C"},
+		{name: "just far enough from boiling", q: 2, ti: 415, to: 330, fluid: liquid},
+		{name: "outlet near dew point", q: 2, ti: 400, to: 334, fluid: steady{cp: 1000, rho: 1, lo: 330, hi: 9999, phase: thermo.Gas}, fault: Saturation, inReason: "outlet"},
+		{name: "outside the fluid", q: 2, ti: 601, to: 330, fluid: steady{cp: 1000, rho: 1, hi: 9999, phase: thermo.Liquid}, fault: OutOfRange, inReason: "by construction"},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			cfg := plant(tt.fluid)
+			cfg.Loads[0].Stream.IdleBelow = tt.idleBelow
+			e := engine(t, cfg)
+			e.Advance(Beat{at(0, tt.q, tt.ti, tt.to), through(1)}, nil)
+			l := e.Snapshot().Loads[0]
+			if l.Figure.Fault != tt.fault || l.Figure.Idle != tt.idle || !strings.Contains(l.Figure.Reason, tt.inReason) {
+				t.Errorf("fault %v, idle %v, reason %q; want %v, %v, ...%s...", l.Figure.Fault, l.Figure.Idle, l.Figure.Reason, tt.fault, tt.idle, tt.inReason)
+			}
+			if tt.fault != NoFault && (l.Missing != second || l.Given != 0) {
+				t.Errorf("missing %d ns, given %g J; want one second and nothing booked", l.Missing, l.Given)
+			}
+			if tt.idle && (l.Measured != second || l.Given != 0) {
+				t.Errorf("measured %d ns, given %g J; an idle load is measured and moves nothing", l.Measured, l.Given)
+			}
+		})
+	}
+}
+
+func TestFlowKinds(t *testing.T) {
+	warm := steady{cp: 4000, rho: 900, molar: 0.028, hi: 420, phase: thermo.Liquid}
+	for _, tt := range []struct {
+		kind FlowKind
+		want float64
+	}{{MassFlow, 2}, {VolumeFlow, 1800}, {MolarFlow, 0.056}} {
+		cfg := plant(warm)
+		cfg.Loads[0].Stream.FlowKind = tt.kind
+		e := engine(t, cfg)
+		e.Advance(Beat{at(0, 2, 350, 330), through(1)}, nil)
+		near(t, "mass flow", e.Snapshot().Loads[0].Figure.MassFlow, tt.want, 1e-12)
+	}
+}
+
+func TestRepeatsAndLateReadings(t *testing.T) {
+	e := engine(t, plant(liquid))
+	e.Advance(Beat{at(0, 2, 350, 330), through(0)}, nil)
+	e.Advance(Beat{at(10, 2, 350, 330), through(5)}, nil)
+	before := e.Snapshot().Loads[0].Given
+	e.Advance(Beat{append(at(10, 9, 350, 330), at(2, 9, 350, 330)...), through(5)}, nil)
+	e.Advance(Beat{at(0, 2, 350, 330), through(5)}, nil)
+	s := e.Snapshot()
+	if got, want := s.Tags[flow].Tally, (Tally{Repeated: 2, Late: 1}); got != want {
+		t.Errorf("tally %+v, want %+v", got, want)
+	}
+	near(t, "given", s.Loads[0].Given, before, 0)
+	e.Advance(Beat{nil, through(20)}, nil)
+	near(t, "given later", e.Snapshot().Loads[0].Given, 160e3*20, 1e-6) // the first value of a stamp stands
+}
+
+func TestMinutes(t *testing.T) {
+	e := engine(t, plant(liquid))
+	var closed []Minute
+	for s := 0.0; s <= 180; s += 10 {
+		q := 2.0
+		if s >= 90 && s < 120 {
+			q = 0
+		}
+		closed = e.Advance(Beat{at(s, q, 350, 330), through(s)}, closed)
+	}
+	if len(closed) != 3 {
+		t.Fatalf("%d minutes, want 3", len(closed))
+	}
+	m := closed[1]
+	if m.Start != through(60) || m.Measured != minute || m.Idle != 30*second {
+		t.Errorf("start %d, measured %d, idle %d", m.Start, m.Measured, m.Idle)
+	}
+	near(t, "mean duty", m.Duty, 80e3, 1e-6)
+	near(t, "least duty", m.DutyMin, 0, 0)
+	near(t, "greatest duty", m.DutyMax, 160e3, 1e-6)
+	near(t, "mean flow", m.MassFlow, 1, 1e-12)
+	near(t, "inlet while flowing", m.Inlet, 350, 1e-9)
+}
+
+// A million additions of a tenth: plain addition is off by 1e-6, compensated by
+// nothing that shows at 1e-12.
+func TestSumDoesNotDrift(t *testing.T) {
+	var s Sum
+	for range 1_000_000 {
+		s.Add(0.1)
+	}
+	near(t, "sum", s.Value(), 1e5, 1e-12*1e5)
+}
+
+func TestGridMustDivideTheMinute(t *testing.T) {
+	cfg := plant(liquid)
+	cfg.Grid = 7 * second
+	if _, err := New(cfg); err == nil || !strings.Contains(err.Error(), "7 s") {
+		t.Errorf("New with a grid of 7 s: %v", err)
+	}
+}

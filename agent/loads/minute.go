@@ -1,0 +1,77 @@
+package loads
+
+import "math"
+
+// Minute is what a load did in one minute of event time. Means are over the
+// measured time, those of temperatures and pressure over the part of it that
+// was not idle. A minute without measured time has no record.
+type Minute struct {
+	Load              int   // index into [Config.Loads]
+	Start             int64 // first instant of the minute
+	Measured, Missing int64 // ns
+	Idle              int64 // ns, within Measured
+	Given, Taken      float64
+	Duty              float64 // mean, W
+	DutyMin, DutyMax  float64 // of the grid's figures, W
+	Uncertainty       float64 // mean standard uncertainty, W
+	MassFlow          float64 // kg/s
+	Inlet, Outlet     float64 // K
+	Pressure          float64 // Pa
+}
+
+// minuteSum gathers a [Minute]; means are kept as time-weighted sums in units of
+// the figure times seconds.
+type minuteSum struct {
+	Sum   Minute
+	Begun bool
+}
+
+func (m *minuteSum) book(f *Figure, g, span int64) {
+	s := &m.Sum
+	if !m.Begun {
+		*s = Minute{Start: floor(g, minute), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
+		m.Begun = true
+	}
+	if !f.Measured() {
+		s.Missing += span
+		return
+	}
+	dt := float64(span) / 1e9
+	s.Measured += span
+	if f.Duty >= 0 {
+		s.Given += f.Duty * dt
+	} else {
+		s.Taken -= f.Duty * dt
+	}
+	s.DutyMin, s.DutyMax = min(s.DutyMin, f.Duty), max(s.DutyMax, f.Duty)
+	if f.Idle {
+		s.Idle += span
+		return
+	}
+	s.Uncertainty += f.Uncertainty * dt
+	s.MassFlow += f.MassFlow * dt
+	s.Inlet += f.Inlet * dt
+	s.Outlet += f.Outlet * dt
+	s.Pressure += f.Pressure * dt
+}
+
+// close returns the finished minute and starts afresh; false where nothing of it
+// was measured.
+func (m *minuteSum) close(load int) (Minute, bool) {
+	s := m.Sum
+	m.Begun = false
+	if s.Measured == 0 {
+		return s, false
+	}
+	s.Load = load
+	measured := float64(s.Measured) / 1e9
+	s.Duty = (s.Given - s.Taken) / measured
+	s.Uncertainty /= measured
+	s.MassFlow /= measured
+	if flowing := float64(s.Measured-s.Idle) / 1e9; flowing > 0 {
+		s.Inlet /= flowing
+		s.Outlet /= flowing
+		s.Pressure /= flowing
+	}
+	return s, true
+}

@@ -1,0 +1,38 @@
+package loads
+
+import "math"
+
+// Sum adds float64s with Neumaier's compensation (A. Neumaier, ZAMM 54, 1974):
+// the error does not grow with the number of terms. The zero value is zero.
+type Sum struct{ Hi, Lo float64 }
+
+// Add adds x, which must be finite.
+func (s *Sum) Add(x float64) {
+	t := s.Hi + x
+	if math.Abs(s.Hi) >= math.Abs(x) {
+		s.Lo += (s.Hi - t) + x
+	} else {
+		s.Lo += (x - t) + s.Hi
+	}
+	s.Hi = t
+}
+
+// Value returns the sum.
+func (s Sum) Value() float64 { return s.Hi + s.Lo }
+
+// Registers are the totals of one load since it was first accounted for. Heat
+// in J only rises in each direction; Measured and Missing in ns add up to the
+// time accounted for.
+type Registers struct {
+	Given, Taken      Sum
+	Measured, Missing int64
+}
+
+func (r *Registers) book(heat float64, span int64) {
+	r.Measured += span
+	if heat >= 0 {
+		r.Given.Add(heat)
+	} else {
+		r.Taken.Add(-heat)
+	}
+}

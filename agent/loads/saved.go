@@ -1,0 +1,85 @@
+package loads
+
+import (
+	"bytes"
+	"encoding/gob"
+	"fmt"
+)
+
+const savedVersion = 1
+
+// saved is the engine's state by name, so that a plant whose site file has
+// gained or lost tags and loads keeps the accounts of the others.
+type saved struct {
+	Version int
+	Grid    int64
+	Next    int64
+	Through int64
+	Tags    map[string]tagState
+	Loads   map[string]loadState
+}
+
+// Save returns the state from which [Engine.Restore] goes on to the same bits.
+func (e *Engine) Save() ([]byte, error) {
+	s := saved{
+		Version: savedVersion, Grid: e.cfg.Grid, Next: e.next, Through: e.through,
+		Tags:  make(map[string]tagState, len(e.tags)),
+		Loads: make(map[string]loadState, len(e.loads)),
+	}
+	for i, t := range e.tags {
+		s.Tags[e.cfg.Tags[i].Name] = t
+	}
+	for i, l := range e.loads {
+		s.Loads[e.cfg.Loads[i].Name] = l
+	}
+	var buf bytes.Buffer
+	if err := gob.NewEncoder(&buf).Encode(s); err != nil {
+		return nil, fmt.Errorf("save engine state: %w", err)
+	}
+	return buf.Bytes(), nil
+}
+
+// Restore takes up the state that Save wrote. Tags and loads that the state does
+// not know begin afresh; those that the plant no longer has are left out. The
+// registers survive a change of grid, the rolling windows do not.
+func (e *Engine) Restore(state []byte) error {
+	var s saved
+	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
+		return fmt.Errorf("restore engine state of %d bytes: %w", len(state), err)
+	}
+	if s.Version != savedVersion {
+		return fmt.Errorf("restore engine state: version %d is not known, this program writes %d", s.Version, savedVersion)
+	}
+	e.next, e.through = s.Next, s.Through
+	for i := range e.tags {
+		if t, ok := s.Tags[e.cfg.Tags[i].Name]; ok {
+			e.tags[i] = t
+		}
+	}
+	for i := range e.loads {
+		l, ok := s.Loads[e.cfg.Loads[i].Name]
+		if ok && s.Grid == e.cfg.Grid {
+			e.loads[i] = l
+			e.loads[i].size(e.cfg.Grid)
+		} else if ok {
+			e.loads[i].Registers = l.Registers
+		}
+	}
+	if s.Grid != e.cfg.Grid {
+		e.next = floor(e.next+e.cfg.Grid-1, e.cfg.Grid)
+	}
+	return nil
+}
+
+// SetRegisters gives load the totals that an earlier run left, where its state is
+// lost: heat in J, times in ns.
+func (e *Engine) SetRegisters(load int, given, taken float64, measured, missing int64) {
+	e.loads[load].Registers = Registers{Given: Sum{Hi: given}, Taken: Sum{Hi: taken}, Measured: measured, Missing: missing}
+}
+
+// size sets what a window's length makes of the grid; it is not saved.
+func (l *loadState) size(grid int64) {
+	for k, length := range Windows {
+		l.Windows[k].parts = newWindow(length, grid).parts
+	}
+}

@@ -1,0 +1,55 @@
+package loads
+
+// Snapshot is what the engine knows at one instant; nothing changes it later.
+type Snapshot struct {
+	Through int64 // every interval that ends by then is booked
+	Loads   []LoadState
+	Tags    []TagState
+}
+
+// LoadState is one load in a [Snapshot]; heat in J, times in ns.
+type LoadState struct {
+	Figure            Figure // at the last grid point
+	Means             [len(Windows)]Mean
+	Given, Taken      float64
+	Measured, Missing int64
+}
+
+// TagState is one tag in a [Snapshot].
+type TagState struct {
+	Newest int64 // stamp of the newest reading taken; 0 before the first
+	Tally
+}
+
+// Snapshot returns the present state.
+func (e *Engine) Snapshot() Snapshot {
+	s := Snapshot{
+		Through: e.next,
+		Loads:   make([]LoadState, len(e.loads)),
+		Tags:    make([]TagState, len(e.tags)),
+	}
+	for i := range e.loads {
+		s.Loads[i] = e.loads[i].snapshot(e.next)
+	}
+	for i := range e.tags {
+		s.Tags[i] = TagState{Newest: e.tags[i].Newest, Tally: e.tally[i]}
+	}
+	return s
+}
+
+func (l *loadState) snapshot(through int64) LoadState {
+	s := LoadState{
+		Figure:   l.figure,
+		Given:    l.Registers.Given.Value(),
+		Taken:    l.Registers.Taken.Value(),
+		Measured: l.Registers.Measured,
+		Missing:  l.Registers.Missing,
+	}
+	if l.figure.At == 0 {
+		s.Figure.Fault, s.Figure.Reason = NoReading, "no reading yet"
+	}
+	for k := range l.Windows {
+		s.Means[k] = l.Windows[k].mean(through)
+	}
+	return s
+}

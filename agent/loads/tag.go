@@ -1,0 +1,87 @@
+package loads
+
+import (
+	"slices"
+	"sort"
+)
+
+const (
+	maxPending = 4096 // readings of one tag that wait for event time
+	maxRecent  = 128  // stamps of one tag remembered to tell a repeat from a late reading
+)
+
+// Receipt says what became of a reading.
+type Receipt uint8
+
+const (
+	Taken    Receipt = iota // waits for, or has reached, its grid point
+	Repeated                // same tag and stamp as one already taken: dropped
+	Late                    // its interval is booked: changes no figure
+	Crowded                 // too many readings of the tag wait: dropped
+)
+
+// sample is a reading without its tag.
+type sample struct {
+	At    int64
+	Value float64
+}
+
+// tagState is what the engine keeps of one tag. Exported fields are part of the
+// engine's saved state.
+type tagState struct {
+	Held    held
+	Pending []sample // stamped after the last booked grid point, by stamp
+	Newest  int64    // newest stamp taken; 0 before the first
+	recent  []int64  // ring of stamps taken
+	next    int      // where the ring is written next
+}
+
+// take files one reading. Booked is the newest grid point already computed.
+func (t *tagState) take(s sample, booked int64) Receipt {
+	if s.At <= booked {
+		if t.Held.Has && t.Held.At == s.At || slices.Contains(t.recent, s.At) {
+			return Repeated
+		}
+		return Late
+	}
+	n := len(t.Pending)
+	i := n
+	if n > 0 && s.At <= t.Pending[n-1].At {
+		i = sort.Search(n, func(k int) bool { return t.Pending[k].At >= s.At })
+		if t.Pending[i].At == s.At {
+			return Repeated
+		}
+	}
+	if n >= maxPending {
+		return Crowded
+	}
+	t.Pending = slices.Insert(t.Pending, i, s)
+	t.Newest = max(t.Newest, s.At)
+	t.remember(s.At)
+	return Taken
+}
+
+func (t *tagState) remember(at int64) {
+	if len(t.recent) < maxRecent {
+		t.recent = append(t.recent, at)
+		return
+	}
+	t.recent[t.next] = at
+	t.next = (t.next + 1) % maxRecent
+}
+
+// reach moves the readings stamped at or before g out of the wait and holds the
+// newest; it reports whether the held value changed.
+func (t *tagState) reach(g int64) bool {
+	n := 0
+	for n < len(t.Pending) && t.Pending[n].At <= g {
+		n++
+	}
+	if n == 0 {
+		return false
+	}
+	last := t.Pending[n-1]
+	t.Held = held{At: last.At, Value: last.Value, Has: true}
+	t.Pending = slices.Delete(t.Pending, 0, n)
+	return true
+}
