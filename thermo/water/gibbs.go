@@ -36,28 +36,72 @@ func (g gibbs) properties(T, p float64) thermo.Properties {
 	}
 }
 
-// sums gathers Σt, ΣIt, ΣJt, ΣI²t, ΣJ²t and ΣIJt over terms t = n x^I y^J.
-type sums struct{ one, i, j, ii, jj, ij float64 }
-
-func (s *sums) add(t, i, j float64) {
-	ti, tj := t*i, t*j
-	s.one += t
-	s.i += ti
-	s.j += tj
-	s.ii += ti * i
-	s.jj += tj * j
-	s.ij += ti * j
+// term is one line n x^I y^J of a table of the release.
+type term struct {
+	n    float64
+	i, j int8
 }
 
-// scaled turns the sums into derivatives, where fx = (π/x)(dx/dπ) and
-// fy = (τ/y)(dy/dτ).
-func (s *sums) scaled(fx, fy float64) gibbs {
+// group is the terms of one I, prepared for summing.
+type group struct {
+	i      float64
+	x      uint8 // where x^I stands among the powers
+	powers []power
+}
+
+// power is n y^J, with its place among the powers of y.
+type power struct {
+	n, nj, njj float64 // n, nJ, nJ²
+	y          uint8
+}
+
+// grouped prepares a table whose lines stand in the order of I. The powers of y
+// begin with y^lowest.
+func grouped(terms []term, lowest int8) []group {
+	var out []group
+	for k, t := range terms {
+		if k == 0 || t.i != terms[k-1].i {
+			out = append(out, group{i: float64(t.i), x: uint8(t.i)})
+		}
+		g, j := &out[len(out)-1], float64(t.j)
+		g.powers = append(g.powers, power{t.n, t.n * j, t.n * j * j, uint8(t.j - lowest)})
+	}
+	return out
+}
+
+// powers of one quantity; which exponent stands where is the filler's affair.
+type powers [64]float64
+
+// sum gathers the terms of all groups and their derivatives, where
+// fx = (π/x)(dx/dπ) and fy = (τ/y)(dy/dτ).
+func sum(groups []group, x, y *powers, fx, fy float64) gibbs {
+	var one, si, sj, sii, sjj, sij float64
+	for k := range groups {
+		g := &groups[k]
+		var a, b, c float64
+		for m := range g.powers {
+			q := &g.powers[m]
+			v := y[q.y&63]
+			a += q.n * v
+			b += q.nj * v
+			c += q.njj * v
+		}
+		v := x[g.x&63]
+		a, b, c = a*v, b*v, c*v
+		ia := g.i * a
+		one += a
+		si += ia
+		sj += b
+		sii += g.i * ia
+		sjj += c
+		sij += g.i * b
+	}
 	return gibbs{
-		g:  s.one,
-		p:  fx * s.i,
-		t:  fy * s.j,
-		pp: fx * fx * (s.ii - s.i),
-		tt: fy * fy * (s.jj - s.j),
-		pt: fx * fy * s.ij,
+		g:  one,
+		p:  fx * si,
+		t:  fy * sj,
+		pp: fx * fx * (sii - si),
+		tt: fy * fy * (sjj - sj),
+		pt: fx * fy * sij,
 	}
 }

@@ -17,12 +17,6 @@ const (
 // powers of that quantity starts there.
 const lowestJ1 = -41
 
-// term is one line of a table of the release: coefficient and exponents.
-type term struct {
-	n    float64
-	i, j int8
-}
-
 var region1Terms = [...]term{
 	{0.14632971213167, 0, -2},
 	{-0.84548187169114, 0, -1},
@@ -60,25 +54,21 @@ var region1Terms = [...]term{
 	{-9.3537087292458e-26, 32, -41},
 }
 
+var region1Groups = grouped(region1Terms[:], lowestJ1)
+
 // region1 evaluates the basic equation and its derivatives in one pass.
 func region1(T, p float64) gibbs {
 	pi, tau := p/region1Pressure, region1Temperature/T
 	x, y := region1PiShift-pi, tau-region1TauShift
-	var a [64]float64
-	var b [64]float64
+	var a, b powers
 	powersOfPi1(&a, x)
 	powersOfTau1(&b, y)
-	var s sums
-	for k := range region1Terms {
-		t := &region1Terms[k]
-		s.add(t.n*a[uint8(t.i)&63]*b[uint8(t.j-lowestJ1)&63], float64(t.i), float64(t.j))
-	}
 	// (7.1 − π) falls as π rises: each derivative by π changes the sign.
-	return s.scaled(-pi/x, tau/y)
+	return sum(region1Groups, &a, &b, -pi/x, tau/y)
 }
 
 // powersOfPi1 fills a[k] = x^k for the exponents I of table 2.
-func powersOfPi1(a *[64]float64, x float64) {
+func powersOfPi1(a *powers, x float64) {
 	a[0], a[1] = 1, x
 	a[2] = x * x
 	a[3] = a[2] * x
@@ -94,7 +84,7 @@ func powersOfPi1(a *[64]float64, x float64) {
 }
 
 // powersOfTau1 fills b[k − lowestJ1] = y^k for the exponents J of table 2.
-func powersOfTau1(b *[64]float64, y float64) {
+func powersOfTau1(b *powers, y float64) {
 	const o = -lowestJ1
 	b[o], b[o+1] = 1, y
 	b[o+2] = y * y

@@ -82,21 +82,16 @@ var region2Residual = [...]term{
 	{-9.436970724121e-07, 24, 58},
 }
 
+var region2Groups = grouped(region2Residual[:], 0)
+
 // region2 evaluates the basic equation and its derivatives in one pass.
 func region2(T, p float64) gibbs {
 	pi, tau := p/region2Pressure, region2Temperature/T
 	y := tau - region2TauShift
-	var a [32]float64
-	var b [64]float64
+	var a, b powers
 	powersOfPi2(&a, pi)
 	powersOfTau2(&b, y)
-	var s sums
-	for k := range region2Residual {
-		t := &region2Residual[k]
-		s.add(t.n*a[uint8(t.i)&31]*b[uint8(t.j)&63], float64(t.i), float64(t.j))
-	}
-	residual := s.scaled(1, tau/y)
-	return region2IdealPart(pi, tau).plus(residual)
+	return region2IdealPart(pi, tau).plus(sum(region2Groups, &a, &b, 1, tau/y))
 }
 
 // region2IdealPart is the ideal-gas part of the basic equation.
@@ -124,7 +119,7 @@ func region2IdealPart(pi, tau float64) gibbs {
 }
 
 // powersOfPi2 fills a[k] = x^k for the exponents I of table 11.
-func powersOfPi2(a *[32]float64, x float64) {
+func powersOfPi2(a *powers, x float64) {
 	a[0], a[1] = 1, x
 	for k := 2; k <= 10; k++ {
 		a[k] = a[k/2] * a[k-k/2]
@@ -139,7 +134,7 @@ func powersOfPi2(a *[32]float64, x float64) {
 }
 
 // powersOfTau2 fills b[k] = y^k for the exponents J of table 11.
-func powersOfTau2(b *[64]float64, y float64) {
+func powersOfTau2(b *powers, y float64) {
 	b[0], b[1] = 1, y
 	for k := 2; k <= 29; k++ {
 		b[k] = b[k/2] * b[k-k/2]
