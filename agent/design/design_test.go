@@ -1,0 +1,107 @@
+package design
+
+import (
+	"testing"
+	"time"
+)
+
+var target = Target{Duty: 640e3, Allow: 0.08, Lasting: 5 * time.Minute}
+
+// course feeds minute means in kW with the given standard uncertainty in kW; a
+// negative mean stands for a minute that is not whole.
+func course(j *Judge, from int64, u float64, kW ...float64) int64 {
+	for _, q := range kW {
+		j.Observe(Minute{Start: from, Whole: q >= 0, Duty: q * 1e3, Uncertainty: u * 1e3})
+		from += nanosecondsPerMinute
+	}
+	return from
+}
+
+func TestVerdicts(t *testing.T) {
+	for _, tt := range []struct {
+		name string
+		u    float64
+		kW   []float64
+		want Verdict
+	}{
+		{"at design", 8, []float64{640, 645, 638, 641, 640}, Holding},
+		{"at the edge of the allowance", 8, []float64{590, 592, 591, 590, 590}, Holding},
+		{"too few minutes", 8, []float64{500, 500, 500, 500}, Undecided},
+		{"low for long enough", 8, []float64{560, 558, 561, 559, 560}, Short},
+		{"high for long enough", 8, []float64{720, 721, 719, 720, 720}, Over},
+		{"low but not for the whole time", 8, []float64{590, 560, 561, 559, 560}, Undecided},
+		{"low by less than the uncertainty", 45, []float64{560, 558, 561, 559, 560}, Undecided},
+		{"low by more than an uncertainty as wide as the allowance", 30, []float64{500, 501, 499, 500, 500}, Short},
+		{"at design with an uncertainty as wide as the allowance", 26, []float64{640, 641, 640, 639, 640}, Undecided},
+		{"a ramp is not steady", 8, []float64{300, 350, 400, 450, 500}, Undecided},
+		{"a minute missing", 8, []float64{560, 558, -1, 559, 560}, Undecided},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			j := NewJudge(target)
+			course(j, 0, tt.u, tt.kW...)
+			if got := j.Verdict(false, false); got != tt.want {
+				t.Errorf("verdict %v, want %v", got, tt.want)
+			}
+		})
+	}
+}
+
+// Between within and beyond, the verdict that was reached stands, so a duty that
+// wavers about the edge does not flutter.
+func TestVerdictDoesNotFlutter(t *testing.T) {
+	j := NewJudge(target)
+	at := course(j, 0, 8, 560, 560, 560, 560, 560)
+	for range 20 {
+		at = course(j, at, 8, 592, 585)
+		if j.Last != Short {
+			t.Fatalf("verdict %v after wavering about the edge, want short", j.Last)
+		}
+	}
+	course(j, at, 8, 600, 600, 600, 600, 600)
+	if j.Last != Holding {
+		t.Errorf("verdict %v after five minutes within the allowance, want holding", j.Last)
+	}
+}
+
+func TestGapBeginsAfresh(t *testing.T) {
+	j := NewJudge(target)
+	at := course(j, 0, 8, 560, 560, 560, 560, 560)
+	at = course(j, at+10*nanosecondsPerMinute, 8, 560)
+	if j.Last != Undecided {
+		t.Errorf("verdict %v after a gap, want undecided", j.Last)
+	}
+	course(j, at, 8, 560, 560, 560, 560)
+	if j.Last != Short {
+		t.Errorf("verdict %v five minutes after the gap, want short", j.Last)
+	}
+}
+
+func TestBlindAndIdleComeFirst(t *testing.T) {
+	j := NewJudge(target)
+	course(j, 0, 8, 560, 560, 560, 560, 560)
+	if got := j.Verdict(true, true); got != Blind {
+		t.Errorf("blind and idle: %v, want blind", got)
+	}
+	if got := j.Verdict(false, true); got != Idle {
+		t.Errorf("idle: %v, want idle", got)
+	}
+}
+
+func TestNoDesignNoVerdict(t *testing.T) {
+	j := NewJudge(Target{})
+	course(j, 0, 1, 560, 560, 560)
+	if j.Last != Undecided {
+		t.Errorf("verdict %v without a design, want undecided", j.Last)
+	}
+}
+
+func TestRestoreGoesOn(t *testing.T) {
+	j := NewJudge(target)
+	at := course(j, 0, 8, 560, 560, 560, 560)
+	k := NewJudge(target)
+	k.Restore(j.Last, j.Minutes)
+	course(k, at, 8, 560)
+	if k.Last != Short {
+		t.Errorf("verdict %v after a restart in between, want short", k.Last)
+	}
+}
