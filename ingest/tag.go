@@ -1,0 +1,94 @@
+package ingest
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"strings"
+	"unicode/utf8"
+)
+
+// MaxPayload is the longest payload that is read, in bytes; a longer one is
+// refused as [TooLarge]. The figure is our own: a message of a few tags has
+// under 1 kB, so 64 KiB leaves room for a large gateway's collected message.
+const MaxPayload = 64 << 10
+
+const maxTopic = 65535 // bytes: MQTT 3.1.1, section 1.5.3, length prefix of a string
+
+// Time formats of a payload's stamp. All count from 1970-01-01 UTC without leap
+// seconds, and numbers may have a fraction.
+const (
+	TimeAny     = ""        // a number by its magnitude (s, ms or µs), a string as RFC 3339
+	TimeSeconds = "s"       // a number of seconds
+	TimeMillis  = "ms"      // a number of milliseconds
+	TimeMicros  = "us"      // a number of microseconds
+	TimeRFC3339 = "rfc3339" // a string such as "2024-03-31T01:30:00.5+01:00"
+)
+
+// Tag says where one instrument's readings are found and what they mean.
+type Tag struct {
+	Name       string
+	Topic      string // exact topic, no wildcard
+	Value      string // JSON Pointer of the value; "": the payload is a bare number
+	Time       string // JSON Pointer of the time stamp; "": the arrival counts
+	TimeFormat string // one of the Time constants
+	Scale      float64
+	Offset     float64 // SI = Scale·x + Offset
+	Min, Max   float64 // SI, instrument range, both ends allowed; ±Inf: no limit
+	QoS        byte    // 0 or 1; 1 is needed for delivery after a crash
+}
+
+// check returns every fault of the tag, joined.
+func (t Tag) check() error {
+	var faults []error
+	fault := func(format string, args ...any) {
+		faults = append(faults, fmt.Errorf("tag %q: "+format, append([]any{t.Name}, args...)...))
+	}
+	if t.Name == "" {
+		fault("topic %q: the name is empty", t.Topic)
+	}
+	if err := checkTopic(t.Topic); err != nil {
+		fault("%w", err)
+	}
+	for _, p := range []string{t.Value, t.Time} {
+		if _, err := splitPointer(p); err != nil {
+			fault("%w", err)
+		}
+	}
+	if t.Value == "" && t.Time != "" {
+		fault("time pointer %q without a value pointer: a bare number carries no stamp", t.Time)
+	}
+	switch t.TimeFormat {
+	case TimeAny, TimeSeconds, TimeMillis, TimeMicros, TimeRFC3339:
+	default:
+		fault("time format %q is unknown; known: %q, %q, %q, %q, or none", t.TimeFormat, TimeSeconds, TimeMillis, TimeMicros, TimeRFC3339)
+	}
+	if !finite(t.Scale) || t.Scale == 0 || !finite(t.Offset) {
+		fault("scale %v and offset %v must be finite and the scale not 0", t.Scale, t.Offset)
+	}
+	if !(t.Min < t.Max) {
+		fault("minimum %v is not below maximum %v", t.Min, t.Max)
+	}
+	if t.QoS > 1 {
+		fault("quality of service %d; use 1 (or 0, which may lose messages)", t.QoS)
+	}
+	return errors.Join(faults...)
+}
+
+func checkTopic(topic string) error {
+	switch {
+	case topic == "":
+		return errors.New("the topic is empty")
+	case len(topic) > maxTopic:
+		return fmt.Errorf("the topic has %d bytes; MQTT allows %d", len(topic), maxTopic)
+	case !utf8.ValidString(topic) || strings.ContainsRune(topic, 0):
+		return fmt.Errorf("topic %q must be UTF-8 without NUL", topic)
+	case strings.ContainsAny(topic, "+#"):
+		return fmt.Errorf("topic %q has a wildcard; a tag is one instrument, give its exact topic", topic)
+	case strings.HasPrefix(topic, "$share/"):
+		return fmt.Errorf("topic %q is a shared subscription, which would deliver only part of the readings", topic)
+	}
+	return nil
+}
+
+func finite(x float64) bool { return !math.IsNaN(x) && !math.IsInf(x, 0) }
