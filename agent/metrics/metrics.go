@@ -1,0 +1,173 @@
+// Package metrics exposes the agent's latest snapshot to Prometheus: one
+// collector, const metrics, no lock. Base units throughout: watts, joules,
+// seconds, degrees Celsius, and kilograms per second, which the trade uses and
+// the naming rules do not know.
+package metrics
+
+import (
+	"math"
+
+	"github.com/prometheus/client_golang/prometheus"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+	"heatreeve/agent/view"
+)
+
+const zeroCelsius = 273.15 // K
+
+// windowNames are the label values of [loads.Windows].
+var windowNames = [len(loads.Windows)]string{"1m", "15m", "1h"}
+
+func desc(name, help string, labels ...string) *prometheus.Desc {
+	return prometheus.NewDesc("heatreeve_"+name, help, labels, nil)
+}
+
+var (
+	duty        = desc("load_duty_watts", "Heat duty at the last beat, positive in the load's own service; absent while the load is blind.", "load")
+	uncertainty = desc("load_duty_uncertainty_watts", "Standard uncertainty of the duty (coverage factor 1).", "load")
+	dutyMean    = desc("load_duty_mean_watts", "Rolling mean of the duty over the measured part of the window.", "load", "window")
+	coverage    = desc("load_coverage_ratio", "Part of the window that was measured, 0 to 1.", "load", "window")
+	heat        = desc("load_heat_joules_total", "Heat booked in one direction, as last committed to disk; survives restarts.", "load", "direction")
+	spent       = desc("load_time_seconds_total", "Time accounted for, by kind, as last committed to disk; survives restarts.", "load", "kind")
+	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
+	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
+	outlet      = desc("load_outlet_celsius", "Outlet temperature that the duty was computed from.", "load")
+	expected    = desc("load_expected_duty_watts", "Duty that the design expects now.", "load")
+	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
+
+	reading  = desc("tag_reading_timestamp_seconds", "Unix time of the newest accepted reading.", "tag")
+	readings = desc("tag_readings_total", "Readings accepted since the agent started.", "tag")
+	refused  = desc("tag_refused_total", "Messages refused since the agent started, by reason.", "tag", "reason")
+	late     = desc("tag_late_readings_total", "Readings that came after their time was accounted for: kept, but in no figure.", "tag")
+	repeated = desc("tag_repeated_readings_total", "Readings delivered more than once and counted once.", "tag")
+
+	eventTime = desc("event_timestamp_seconds", "Unix time up to which everything is accounted for.")
+	connected = desc("broker_connected", "1 while the session with the broker is open.")
+	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
+	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
+	overflow  = desc("broker_overflow_total", "Messages left with the broker because too many waited.")
+	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
+	bytes     = desc("history_bytes", "Bytes in use by the history on disk.")
+	failures  = desc("history_commit_failures_total", "Commits of the history that failed since the agent started.")
+)
+
+// Collector exposes what latest returns; before the first snapshot, nothing.
+type Collector struct {
+	latest func() *view.Snapshot
+	now    func() int64
+}
+
+// NewCollector returns a collector over the snapshots that latest gives (nil
+// before the first). Now, in Unix nanoseconds, tells when a figure has run out of
+// age.
+func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
+	return &Collector{latest: latest, now: now}
+}
+
+// Describe sends every description, so that a clash of names is found at start.
+func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
+	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
+		reading, readings, refused, late, repeated, eventTime, connected, losses, unknown, overflow, waiting, bytes, failures} {
+		ch <- d
+	}
+}
+
+// Collect sends the series of the latest snapshot.
+func (c *Collector) Collect(ch chan<- prometheus.Metric) {
+	s := c.latest()
+	if s == nil {
+		return
+	}
+	out := sink{ch}
+	now := c.now()
+	for i := range s.Loads {
+		figure, v := s.Current(i, now)
+		out.figure(s.Loads[i].Name, &figure)
+		out.load(&s.Loads[i], v)
+	}
+	for i := range s.Tags {
+		out.tag(&s.Tags[i])
+	}
+	out.agent(s)
+}
+
+type sink struct{ ch chan<- prometheus.Metric }
+
+func (o sink) gauge(d *prometheus.Desc, v float64, labels ...string) {
+	o.ch <- prometheus.MustNewConstMetric(d, prometheus.GaugeValue, v, labels...)
+}
+
+func (o sink) counter(d *prometheus.Desc, v float64, labels ...string) {
+	o.ch <- prometheus.MustNewConstMetric(d, prometheus.CounterValue, v, labels...)
+}
+
+// figure leaves out what there is none of: a value that is not trusted is absent,
+// never zero.
+func (o sink) figure(name string, f *loads.Figure) {
+	if !f.Measured() {
+		return
+	}
+	o.gauge(duty, f.Duty, name)
+	o.gauge(uncertainty, f.Uncertainty, name)
+	o.gauge(massFlow, f.MassFlow, name)
+	if f.Idle {
+		return
+	}
+	o.gauge(inlet, f.Inlet-zeroCelsius, name)
+	o.gauge(outlet, f.Outlet-zeroCelsius, name)
+}
+
+func (o sink) load(l *view.Load, now design.Verdict) {
+	for k, m := range l.Means {
+		if m.Coverage > 0 {
+			o.gauge(dutyMean, m.Duty, l.Name, windowNames[k])
+		}
+		o.gauge(coverage, m.Coverage, l.Name, windowNames[k])
+	}
+	o.counter(heat, l.Booked.Given, l.Name, "given")
+	o.counter(heat, l.Booked.Taken, l.Name, "taken")
+	o.counter(spent, float64(l.Booked.Measured)/1e9, l.Name, "measured")
+	o.counter(spent, float64(l.Booked.Missing)/1e9, l.Name, "missing")
+	if l.Design != 0 {
+		o.gauge(expected, l.Design, l.Name)
+	}
+	for _, v := range design.Verdicts {
+		o.gauge(verdict, truth(v == now), l.Name, v.String())
+	}
+}
+
+func (o sink) tag(t *view.Tag) {
+	if t.Newest != 0 {
+		o.gauge(reading, seconds(t.Newest), t.Name)
+	}
+	o.counter(readings, float64(t.Accepted), t.Name)
+	o.counter(late, float64(t.Late), t.Name)
+	o.counter(repeated, float64(t.Repeated), t.Name)
+	for _, r := range t.Refused {
+		o.counter(refused, float64(r.Count), t.Name, r.Reason)
+	}
+}
+
+func (o sink) agent(s *view.Snapshot) {
+	if s.At != 0 {
+		o.gauge(eventTime, seconds(s.At))
+	}
+	o.gauge(connected, truth(s.Broker.Connected))
+	o.counter(losses, float64(s.Broker.Losses))
+	o.counter(unknown, float64(s.Broker.UnknownTopic))
+	o.counter(overflow, float64(s.Broker.Overflow))
+	o.gauge(waiting, float64(s.Broker.Waiting))
+	o.gauge(bytes, float64(s.History.Bytes))
+	o.counter(failures, float64(s.History.Failures))
+}
+
+func truth(b bool) float64 {
+	if b {
+		return 1
+	}
+	return 0
+}
+
+// seconds keeps milliseconds, and no more digits than float64 holds.
+func seconds(ns int64) float64 { return math.Round(float64(ns)/1e6) / 1e3 }

@@ -1,0 +1,197 @@
+package metrics
+
+import (
+	"regexp"
+	"strings"
+	"testing"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/testutil"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+	"heatreeve/agent/view"
+)
+
+const instant = int64(1_700_000_000_500_000_000)
+
+func snapshot() *view.Snapshot {
+	return &view.Snapshot{
+		At: instant, Slack: 7e9,
+		Loads: []view.Load{
+			{
+				Name: "hot-water", Verdict: design.Short, Design: 640e3, Allow: 0.08,
+				Figure: loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15, Until: instant + 30e9},
+				Means:  [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
+				Booked: view.Registers{Given: 1.5e9, Taken: 2, Measured: 3600e9, Missing: 60e9},
+			},
+			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}},
+			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true, Until: instant + 30e9}},
+		},
+		Tags: []view.Tag{
+			{Name: "TT-1", Newest: instant, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}},
+			{Name: "TT-2"},
+		},
+		Broker:  view.Broker{Connected: true, Losses: 4, UnknownTopic: 5, Overflow: 6, Waiting: 7},
+		History: view.History{Bytes: 65536, Failures: 1},
+	}
+}
+
+func registry(s *view.Snapshot, now int64) *prometheus.Registry {
+	r := prometheus.NewPedanticRegistry()
+	r.MustRegister(NewCollector(func() *view.Snapshot { return s }, func() int64 { return now }))
+	r.MustRegister(BuildInfo("test"), CommitSeconds())
+	return r
+}
+
+func TestFigures(t *testing.T) {
+	want := `
+# HELP heatreeve_load_duty_watts Heat duty at the last beat, positive in the load's own service; absent while the load is blind.
+# TYPE heatreeve_load_duty_watts gauge
+heatreeve_load_duty_watts{load="hot-water"} 500000
+heatreeve_load_duty_watts{load="spare"} 0
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from.
+# TYPE heatreeve_load_inlet_celsius gauge
+heatreeve_load_inlet_celsius{load="hot-water"} 130
+# HELP heatreeve_load_coverage_ratio Part of the window that was measured, 0 to 1.
+# TYPE heatreeve_load_coverage_ratio gauge
+heatreeve_load_coverage_ratio{load="dryer",window="15m"} 0
+heatreeve_load_coverage_ratio{load="dryer",window="1h"} 0
+heatreeve_load_coverage_ratio{load="dryer",window="1m"} 0
+heatreeve_load_coverage_ratio{load="hot-water",window="15m"} 0.9
+heatreeve_load_coverage_ratio{load="hot-water",window="1h"} 0.25
+heatreeve_load_coverage_ratio{load="hot-water",window="1m"} 1
+heatreeve_load_coverage_ratio{load="spare",window="15m"} 0
+heatreeve_load_coverage_ratio{load="spare",window="1h"} 0
+heatreeve_load_coverage_ratio{load="spare",window="1m"} 0
+# HELP heatreeve_load_expected_duty_watts Duty that the design expects now.
+# TYPE heatreeve_load_expected_duty_watts gauge
+heatreeve_load_expected_duty_watts{load="hot-water"} 640000
+# HELP heatreeve_tag_reading_timestamp_seconds Unix time of the newest accepted reading.
+# TYPE heatreeve_tag_reading_timestamp_seconds gauge
+heatreeve_tag_reading_timestamp_seconds{tag="TT-1"} 1.7000000005e+09
+# HELP heatreeve_tag_refused_total Messages refused since the agent started, by reason.
+# TYPE heatreeve_tag_refused_total counter
+heatreeve_tag_refused_total{reason="ahead",tag="TT-1"} 0
+heatreeve_tag_refused_total{reason="empty",tag="TT-1"} 3
+`
+	err := testutil.GatherAndCompare(registry(snapshot(), instant+5e9), strings.NewReader(want),
+		"heatreeve_load_duty_watts", "heatreeve_load_inlet_celsius", "heatreeve_load_coverage_ratio",
+		"heatreeve_load_expected_duty_watts", "heatreeve_tag_reading_timestamp_seconds", "heatreeve_tag_refused_total")
+	if err != nil {
+		t.Error(err)
+	}
+}
+
+func TestRegisters(t *testing.T) {
+	want := `
+# HELP heatreeve_load_heat_joules_total Heat booked in one direction, as last committed to disk; survives restarts.
+# TYPE heatreeve_load_heat_joules_total counter
+heatreeve_load_heat_joules_total{direction="given",load="dryer"} 0
+heatreeve_load_heat_joules_total{direction="given",load="hot-water"} 1.5e+09
+heatreeve_load_heat_joules_total{direction="given",load="spare"} 0
+heatreeve_load_heat_joules_total{direction="taken",load="dryer"} 0
+heatreeve_load_heat_joules_total{direction="taken",load="hot-water"} 2
+heatreeve_load_heat_joules_total{direction="taken",load="spare"} 0
+# HELP heatreeve_load_time_seconds_total Time accounted for, by kind, as last committed to disk; survives restarts.
+# TYPE heatreeve_load_time_seconds_total counter
+heatreeve_load_time_seconds_total{kind="measured",load="dryer"} 0
+heatreeve_load_time_seconds_total{kind="measured",load="hot-water"} 3600
+heatreeve_load_time_seconds_total{kind="measured",load="spare"} 0
+heatreeve_load_time_seconds_total{kind="missing",load="dryer"} 0
+heatreeve_load_time_seconds_total{kind="missing",load="hot-water"} 60
+heatreeve_load_time_seconds_total{kind="missing",load="spare"} 0
+`
+	err := testutil.GatherAndCompare(registry(snapshot(), instant), strings.NewReader(want), "heatreeve_load_heat_joules_total", "heatreeve_load_time_seconds_total")
+	if err != nil {
+		t.Error(err)
+	}
+}
+
+// A figure whose inputs have run out of age is left out, and the verdict is
+// blind, though the snapshot is from before.
+func TestRunOutFigureIsAbsent(t *testing.T) {
+	want := `
+# HELP heatreeve_load_duty_watts Heat duty at the last beat, positive in the load's own service; absent while the load is blind.
+# TYPE heatreeve_load_duty_watts gauge
+heatreeve_load_duty_watts{load="hot-water"} 500000
+heatreeve_load_duty_watts{load="spare"} 0
+`
+	if err := testutil.GatherAndCompare(registry(snapshot(), instant+37e9), strings.NewReader(want), "heatreeve_load_duty_watts"); err != nil {
+		t.Errorf("still held: %v", err)
+	}
+	late := registry(snapshot(), instant+38e9)
+	if n, err := testutil.GatherAndCount(late, "heatreeve_load_duty_watts"); n != 0 || err != nil {
+		t.Errorf("%d duties (%v) after the inputs ran out, want none", n, err)
+	}
+	families, err := late.Gather()
+	if err != nil {
+		t.Fatal(err)
+	}
+	blind := 0
+	for _, f := range families {
+		if f.GetName() != "heatreeve_load_verdict" {
+			continue
+		}
+		for _, m := range f.GetMetric() {
+			for _, l := range m.GetLabel() {
+				if l.GetName() == "verdict" && l.GetValue() == "blind" && m.GetGauge().GetValue() == 1 {
+					blind++
+				}
+			}
+		}
+	}
+	if blind != 3 {
+		t.Errorf("%d loads blind, want all 3", blind)
+	}
+}
+
+// The naming rules hold but for the one exception made on purpose.
+func TestNamesKeepTheRules(t *testing.T) {
+	r := registry(snapshot(), instant)
+	problems, err := testutil.GatherAndLint(r)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, p := range problems {
+		if p.Metric != "heatreeve_load_mass_flow_kilograms_per_second" {
+			t.Errorf("%s: %s", p.Metric, p.Text)
+		}
+	}
+	plain := regexp.MustCompile(`^heatreeve_[a-z0-9_]+$`)
+	wrong := regexp.MustCompile(`kilo(watt|pascal|joule)|mega|percent|kelvin|_per_hour|minutes|hours`)
+	families, err := r.Gather()
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, f := range families {
+		if !plain.MatchString(f.GetName()) || wrong.MatchString(f.GetName()) {
+			t.Errorf("%s: not a plain name in base units", f.GetName())
+		}
+	}
+}
+
+func TestNothingBeforeTheFirstSnapshot(t *testing.T) {
+	r := registry(nil, instant)
+	if n, err := testutil.GatherAndCount(r); err != nil || n != 2 {
+		t.Errorf("%d series (%v) before the first snapshot, want build_info and the commit histogram", n, err)
+	}
+}
+
+func BenchmarkScrape(b *testing.B) {
+	s := snapshot()
+	one := s.Loads[0]
+	s.Loads = s.Loads[:0]
+	for i := range 250 {
+		one.Name = "load-" + strings.Repeat("x", i%7) + string(rune('a'+i%26)) + string(rune('a'+i/26))
+		s.Loads = append(s.Loads, one)
+	}
+	s.Tags = nil
+	r := registry(s, instant)
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, err := r.Gather(); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

@@ -1,0 +1,82 @@
+// Package view holds the picture of the running agent that readers see: one
+// immutable snapshot a beat. Metrics, page and terminal read it; nothing in it
+// changes after it was published, so nobody locks.
+package view
+
+import (
+	"math"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+)
+
+// Snapshot is the agent at one beat. Instants are Unix nanoseconds.
+type Snapshot struct {
+	Site    string
+	At      int64 // event time: every interval that ends by then is accounted for
+	Slack   int64 // how far event time may stand behind the clock in good order, ns
+	Loads   []Load
+	Tags    []Tag
+	Broker  Broker
+	History History
+}
+
+// Load is one load.
+type Load struct {
+	Name    string
+	Figure  loads.Figure
+	Means   [len(loads.Windows)]loads.Mean
+	Booked  Registers // as last committed to disk
+	Design  float64   // expected duty, W; 0 where the load has none
+	Allow   float64   // allowance, fraction of Design
+	Verdict design.Verdict
+}
+
+// Registers are the totals of a load: heat in J, times in ns.
+type Registers struct {
+	Given, Taken      float64
+	Measured, Missing int64
+}
+
+// Tag is one tag, with what became of its messages since the agent started.
+type Tag struct {
+	Name     string
+	Newest   int64 // stamp of the newest reading; 0 before the first
+	Accepted uint64
+	Late     uint64    // arrived after their interval was accounted for
+	Repeated uint64    // delivered more than once
+	Refused  []Refusal // one entry a reason, all reasons, in a fixed order
+}
+
+// Refusal counts the messages of a tag that were refused for one reason.
+type Refusal struct {
+	Reason string
+	Count  uint64
+}
+
+// Broker is the MQTT session.
+type Broker struct {
+	Connected    bool
+	Losses       uint64 // connections lost since the agent started
+	UnknownTopic uint64 // messages on topics that no tag asks for
+	Overflow     uint64 // messages left to the broker because too many waited
+	Waiting      int    // messages not yet acknowledged
+}
+
+// History is the store.
+type History struct {
+	Bytes    int64
+	Failures uint64 // commits that failed since the agent started
+	Fault    string // why the last commit failed; empty when it did not
+}
+
+// Current returns the load's figure as it may be shown at the instant now, and
+// the verdict that goes with it. A figure whose inputs have run out of age since
+// it was worked is blind: a frozen last value is never shown as live.
+func (s *Snapshot) Current(i int, now int64) (loads.Figure, design.Verdict) {
+	l := &s.Loads[i]
+	if l.Figure.Measured() && l.Figure.Until < math.MaxInt64-s.Slack && now > l.Figure.Until+s.Slack {
+		return loads.Figure{At: l.Figure.At, Fault: loads.Stale, Reason: "no reading has come in time to hold the figure"}, design.Blind
+	}
+	return l.Figure, l.Verdict
+}
