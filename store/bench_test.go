@@ -1,0 +1,113 @@
+package store
+
+import (
+	"encoding/binary"
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"path/filepath"
+	"testing"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// written is what bbolt has written so far: the pages that transactions have
+// allocated, and one meta page a commit. It is counted by bbolt, not by the kernel.
+func written(db *bolt.DB, commits int) int64 {
+	stats := db.Stats().TxStats
+	return stats.GetPageAlloc() + int64(commits)*int64(db.Info().PageSize)
+}
+
+// walk makes the readings of tags that wander in steps of 0.01, each read every
+// 10 s, as they come in SI units: temperatures in K and volume flows in m³/s.
+type walk struct {
+	rng    *rand.Rand
+	values []float64
+	at     int64
+}
+
+func newWalk(tags int) *walk {
+	w := &walk{rng: rand.New(rand.NewPCG(1, 2)), values: make([]float64, tags), at: 1_760_000_000 * second}
+	for i := range w.values {
+		w.values[i] = 40 + float64(i)
+	}
+	return w
+}
+
+func (w *walk) beats(seconds int) []Beat {
+	beats := make([]Beat, seconds)
+	for i := range beats {
+		w.at += second
+		beats[i].Through = w.at
+		for tag := i % 10; tag < len(w.values); tag += 10 {
+			w.values[tag] += float64(w.rng.IntN(7)-3) / 100
+			v := math.Round(w.values[tag]*100) / 100
+			if tag%3 == 0 {
+				v /= 3600
+			} else {
+				v += 273.15
+			}
+			beats[i].Readings = append(beats[i].Readings, Reading{Tag: uint32(tag), At: w.at, Value: v, Stamped: true})
+		}
+	}
+	return beats
+}
+
+// BenchmarkCommit tells how many bytes one reading costs on the disk, for 50
+// tags read every 10 s, against one key for each reading. B/reading is the mean
+// of a day and more of commits, B/kept what the file then holds of each.
+func BenchmarkCommit(b *testing.B) {
+	for _, seconds := range []int{10, 60} {
+		commits := 86_400 / seconds
+		b.Run(fmt.Sprintf("%ds/grouped", seconds), func(b *testing.B) {
+			for b.Loop() {
+				s := newStore(b, Options{})
+				w := newWalk(50)
+				before, used := written(s.db, 0), s.Bytes()
+				for range commits {
+					commit(b, s, Batch{Beats: w.beats(seconds)})
+				}
+				readings := float64(commits * seconds * 5)
+				b.ReportMetric(float64(written(s.db, commits)-before)/readings, "B/reading")
+				b.ReportMetric(float64(s.Bytes()-used)/readings, "B/kept")
+			}
+		})
+		b.Run(fmt.Sprintf("%ds/one-key-each", seconds), func(b *testing.B) {
+			for b.Loop() {
+				benchmarkPlain(b, commits, seconds)
+			}
+		})
+	}
+}
+
+func benchmarkPlain(b *testing.B, commits, seconds int) {
+	db, err := bolt.Open(filepath.Join(b.TempDir(), "plain.db"), fileMode, boltOptions(0))
+	if err != nil {
+		b.Fatal(err)
+	}
+	defer db.Close()
+	w := newWalk(50)
+	for range commits {
+		err := db.Update(func(tx *bolt.Tx) error {
+			bucket, err := tx.CreateBucketIfNotExists([]byte("readings"))
+			if err != nil {
+				return err
+			}
+			bucket.FillPercent = appendFill
+			for _, beat := range w.beats(seconds) {
+				for _, r := range beat.Readings {
+					key := minuteKey(r.At, r.Tag)
+					if err := bucket.Put(key, binary.LittleEndian.AppendUint64(nil, math.Float64bits(r.Value))); err != nil {
+						return err
+					}
+				}
+			}
+			return nil
+		})
+		if err != nil {
+			b.Fatal(err)
+		}
+	}
+	readings := float64(commits * seconds * 5)
+	b.ReportMetric(float64(written(db, commits))/readings, "B/reading")
+}

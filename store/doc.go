@@ -1,0 +1,84 @@
+// Package store keeps the history of a plant in one bbolt file: the readings
+// as they came, one record a minute of each load, the energy registers, and the
+// engine's own state. Everything that belongs together is committed in one
+// transaction, so that a process killed at any moment finds on its return
+// either all of a batch or nothing of it.
+//
+// # Layout, version 1
+//
+// The file holds these buckets. Integers in keys are big-endian, so that keys
+// sort as numbers do; a signed time has its sign bit flipped for the same
+// reason. Integers in values are little-endian. uvarint is the base-128 form of
+// encoding/binary, and zigzag maps 0, -1, 1, -2 to 0, 1, 2, 3. Every checksum is
+// CRC-32C over the record's key followed by the bytes before the checksum.
+//
+//	meta       "version"  uint32: 1
+//	           "created"  int64: Unix nanoseconds at creation
+//	names      kind 00 name -> uint32 id, big-endian
+//	journal    uint64 sequence of the first record -> a closed group
+//	recent     uint64 sequence of the first record -> part of the open group
+//	tail0..2   "t" -> the last part of the open group, cut in pieces
+//	minutes    int64 start, uint32 load -> a minute record
+//	registers  uint32 load -> 4 float64 (given, taken, measured, missing), CRC
+//	state      "checkpoint" -> uint64 sequence, int64 through, opaque bytes, CRC
+//
+// Each batch that has beats makes one record, and records are numbered from 1
+// without a gap. A record is
+//
+//	uvarint length of the body, body, CRC
+//
+// where the checksum's key is the record's sequence number. The body is
+//
+//	uvarint beats, then for each beat:
+//	    instant through, uvarint readings, then for each reading:
+//	        1 byte of control, [uvarint tag], [instant], value bytes
+//
+// A reading is told by what it does not share with the reading foreseen. The
+// control byte says which parts follow:
+//
+//	bit 7      the tag is not the foreseen one; uvarint tag follows
+//	bit 6      the time is not the foreseen one; an instant follows
+//	bit 5      Stamped is not as in the reading before
+//	bits 0-4   which bytes of value XOR (the tag's value before) follow:
+//	           0 none, 1 all eight, else those left when whole zero bytes are
+//	           taken off both ends: 2 + index in the list of (leading, count)
+//	           (1,1) (1,2) .. (1,7) (2,1) .. (2,6) (3,1) .. (7,1)
+//
+// The value bytes follow with the low one first. An instant is the difference
+// d = time - foreseen time in nanoseconds, as q = floor(d / 10^6) and r = d - q·10^6:
+// uvarint 2·zigzag(q) + (1 if r is not 0), then uvarint r if it is not 0.
+//
+// Foreseen are: for the tag, the one that followed the tag before when that
+// last occurred, or else the next number; for its time, its last time plus its
+// last step, or for a tag that is new in the group, the time of the reading
+// before; for Stamped before the first reading, false; for its value, its last
+// one or 0; for through, as for a time, with 0 before the first beat.
+//
+// Records that share this memory form a group. The memory starts empty with
+// each group. The open group lies in recent and, after that, in the three tails
+// taken as one run of bytes; once it holds 48 KiB it is closed and becomes one
+// value of journal:
+//
+//	uint64 last sequence, int64 earliest, int64 latest, CRC, records
+//
+// Earliest and latest bound the times of all readings and beats in the group,
+// and serve to pass over groups when a span of time is asked for: there is no
+// other index. The checksum covers key and times; the records have their own.
+//
+// A minute record tells its 12 floats in the order of the fields of [Minute]
+// after Start: 6 bytes of 4-bit counts (low half first), the bytes of each float
+// XOR its forerunner without the zero bytes at the low end, high one first, then a
+// CRC. The forerunner is 0, but Duty for DutyMin and DutyMax, and Inlet for
+// Outlet. A count tells how many bytes there are.
+//
+// # Why in this shape
+//
+// bbolt writes whole pages, and a path of them from leaf to root. A small bucket
+// lies inside the root's own page, and so a commit that only adds to the tails
+// writes two pages: root and meta. Once the root's page is full, the tails move
+// to recent, and from there in larger pieces to journal, where a group costs one
+// key. Keys only ever grow, so pages fill up and stay as they are.
+//
+// A version other than 1 is refused. Change any of the above, and the version
+// must change with it.
+package store

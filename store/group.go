@@ -1,0 +1,198 @@
+package store
+
+import (
+	"encoding/binary"
+	"fmt"
+	"math"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// groupBytes is how much a group holds before it is closed.
+const groupBytes = 48 << 10
+
+// headerBytes is the length of what stands before the records of a closed group.
+const headerBytes = 32
+
+// appendFill is the share of a page that append-only keys may fill. bbolt does
+// not store it, so that each transaction sets it again.
+const appendFill = 0.95
+
+// span says what a group covers: the numbers of its records, the times of all
+// beats and readings, and how many readings there are.
+type span struct {
+	first, last      uint64
+	earliest, latest int64
+	readings         uint32
+}
+
+func newSpan(first uint64) span {
+	return span{first: first, last: first - 1, earliest: math.MaxInt64, latest: math.MinInt64}
+}
+
+func (s *span) add(beats []Beat) {
+	s.last++
+	for _, b := range beats {
+		s.cover(b.Through)
+		for _, r := range b.Readings {
+			s.cover(r.At)
+		}
+		s.readings += uint32(len(b.Readings))
+	}
+}
+
+func (s *span) cover(t int64) {
+	s.earliest, s.latest = min(s.earliest, t), max(s.latest, t)
+}
+
+// overlaps tells whether the group may hold something in [from, to).
+func (s *span) overlaps(from, to int64) bool { return s.latest >= from && s.earliest < to }
+
+func (s *span) header() []byte {
+	b := binary.LittleEndian.AppendUint64(nil, s.last)
+	b = binary.LittleEndian.AppendUint64(b, uint64(s.earliest))
+	b = binary.LittleEndian.AppendUint64(b, uint64(s.latest))
+	b = binary.LittleEndian.AppendUint32(b, s.readings)
+	return binary.LittleEndian.AppendUint32(b, checksum(sequenceKey(s.first), b))
+}
+
+func parseHeader(key, value []byte) (span, error) {
+	if len(key) != 8 || len(value) < headerBytes ||
+		binary.LittleEndian.Uint32(value[28:]) != checksum(key, value[:28]) {
+		return span{}, errRecord
+	}
+	return span{
+		first:    binary.BigEndian.Uint64(key),
+		last:     binary.LittleEndian.Uint64(value),
+		earliest: int64(binary.LittleEndian.Uint64(value[8:])),
+		latest:   int64(binary.LittleEndian.Uint64(value[16:])),
+		readings: binary.LittleEndian.Uint32(value[24:]),
+	}, nil
+}
+
+// openGroup is the group that still grows: what of it lies in recent, and its
+// tail, which lies inside the root's page.
+type openGroup struct {
+	span
+	memory      *memory
+	recentBytes int
+	tailFirst   uint64 // number of the first record in tail
+	tail        []byte
+}
+
+func newOpenGroup(first uint64) *openGroup {
+	return &openGroup{span: newSpan(first), memory: newMemory(), tailFirst: first}
+}
+
+// add writes beats as the next record.
+func (g *openGroup) add(tx *bolt.Tx, beats []Beat, pieceBytes int) error {
+	g.tail = appendRecord(g.tail, g.last+1, beats, g.memory)
+	g.span.add(beats)
+	switch {
+	case g.recentBytes+len(g.tail) >= groupBytes:
+		return g.close(tx)
+	case len(g.tail) > tails*pieceBytes:
+		return g.flush(tx)
+	}
+	return putTail(tx, g.tail, pieceBytes)
+}
+
+// flush moves the tail to recent.
+func (g *openGroup) flush(tx *bolt.Tx) error {
+	recent := tx.Bucket(bucketRecent)
+	recent.FillPercent = appendFill
+	if err := recent.Put(sequenceKey(g.tailFirst), g.tail); err != nil {
+		return err
+	}
+	g.recentBytes += len(g.tail)
+	g.tail, g.tailFirst = nil, g.last+1
+	return putTail(tx, nil, 1)
+}
+
+// close writes the whole group to journal and begins a new one.
+func (g *openGroup) close(tx *bolt.Tx) error {
+	journal := tx.Bucket(bucketJournal)
+	journal.FillPercent = appendFill
+	value := append(g.header(), recentRecords(tx)...)
+	if err := journal.Put(sequenceKey(g.first), append(value, g.tail...)); err != nil {
+		return err
+	}
+	if g.recentBytes > 0 {
+		if err := tx.DeleteBucket(bucketRecent); err != nil {
+			return err
+		}
+		if _, err := tx.CreateBucket(bucketRecent); err != nil {
+			return err
+		}
+	}
+	*g = *newOpenGroup(g.last + 1)
+	return putTail(tx, nil, 1)
+}
+
+// recentRecords returns what of the open group lies in recent.
+func recentRecords(tx *bolt.Tx) (b []byte) {
+	c := tx.Bucket(bucketRecent).Cursor()
+	for k, v := c.First(); k != nil; k, v = c.Next() {
+		b = append(b, v...)
+	}
+	return b
+}
+
+// putTail cuts b into pieces, one for each tail bucket.
+func putTail(tx *bolt.Tx, b []byte, pieceBytes int) error {
+	for i := range tails {
+		bucket := tx.Bucket(bucketTail(i))
+		n := min(len(b), pieceBytes)
+		if n == 0 {
+			if err := bucket.Delete(keyTail); err != nil {
+				return err
+			}
+			continue
+		}
+		if err := bucket.Put(keyTail, b[:n]); err != nil {
+			return err
+		}
+		b = b[n:]
+	}
+	return nil
+}
+
+func tailRecords(tx *bolt.Tx) (b []byte) {
+	for i := range tails {
+		b = append(b, tx.Bucket(bucketTail(i)).Get(keyTail)...)
+	}
+	return b
+}
+
+// loadOpen reads the open group back, and with it the memory of the writer.
+func loadOpen(tx *bolt.Tx) (*openGroup, error) {
+	first := uint64(1)
+	if k, v := tx.Bucket(bucketJournal).Cursor().Last(); k != nil {
+		closed, err := parseHeader(k, v)
+		if err != nil {
+			return nil, fmt.Errorf("last group of the journal: %w", err)
+		}
+		first = closed.last + 1
+	}
+	g := newOpenGroup(first)
+	recent := recentRecords(tx)
+	g.recentBytes = len(recent)
+	if err := g.replay(recent); err != nil {
+		return nil, err
+	}
+	g.tailFirst = g.last + 1
+	g.tail = tailRecords(tx)
+	return g, g.replay(g.tail)
+}
+
+func (g *openGroup) replay(records []byte) error {
+	p := parser{rest: records}
+	for len(p.rest) > 0 {
+		beats, err := p.record(g.last+1, g.memory)
+		if err != nil {
+			return fmt.Errorf("record %d: %w", g.last+1, err)
+		}
+		g.span.add(beats)
+	}
+	return nil
+}

@@ -1,0 +1,261 @@
+package store
+
+import (
+	"encoding/binary"
+	"errors"
+	"fmt"
+	"io/fs"
+	"log/slog"
+	"os"
+	"path/filepath"
+	"runtime/debug"
+	"strconv"
+	"time"
+
+	bolt "go.etcd.io/bbolt"
+	berrors "go.etcd.io/bbolt/errors"
+)
+
+// Version is the layout that this package writes, and the only one it reads.
+const Version = 1
+
+var (
+	// ErrLocked says that another process has the file open.
+	ErrLocked = errors.New("file is locked")
+	// ErrEmptied says that the file is there but holds nothing, as one that was
+	// cut off does. It is not taken for a new history.
+	ErrEmptied = errors.New("file is empty")
+	// ErrDamaged says that the file, or a record in it, is not as it was written.
+	ErrDamaged = errors.New("file is damaged")
+	// ErrVersion says that the file has a layout that this package does not know.
+	ErrVersion = errors.New("unknown layout version")
+)
+
+const (
+	lockWait     = 2 * time.Second
+	defaultBytes = 256 << 20
+	fileSlack    = 16 << 20
+	narrowFile   = 400 << 20 // greatest file where addresses have 32 bits
+	growBytes    = 1 << 20
+	fileMode     = 0o600
+)
+
+const advice = "; stop the agent, move the file aside and restore a backup, or start without it for a new history"
+
+// Open opens the history in the file at path, which it makes if there is none.
+// The whole file is checked first: a damaged one is an error, and is never
+// replaced by a new one. If most of the file is free pages, it is compacted.
+func Open(path string, o Options) (*Store, error) {
+	s, err := open(path, o)
+	if err != nil {
+		return nil, fmt.Errorf("open history %q: %w", path, err)
+	}
+	return s, nil
+}
+
+func open(path string, o Options) (*Store, error) {
+	if err := create(path); err != nil {
+		return nil, err
+	}
+	s := &Store{path: path, maxAge: o.MaxAge, maxBytes: o.MaxBytes}
+	if s.maxBytes <= 0 {
+		s.maxBytes = defaultBytes
+	}
+	log := o.Log
+	if log == nil {
+		log = slog.New(slog.DiscardHandler)
+	}
+	limit := fileLimit(s.maxBytes, o.MaxFile)
+	err := guard(func() (err error) {
+		if s.db, err = openChecked(path, limit); err != nil {
+			return err
+		}
+		s.db, err = compact(s.db, limit, log)
+		return err
+	})
+	if err != nil {
+		return nil, err
+	}
+	s.piece = s.db.Info().PageSize/4 - 256
+	err = s.view(func(tx *bolt.Tx) (err error) {
+		s.open, err = loadOpen(tx)
+		return err
+	})
+	if err != nil {
+		return nil, errors.Join(fmt.Errorf("%w: %w%s", ErrDamaged, err, advice), s.db.Close())
+	}
+	s.measure()
+	return s, nil
+}
+
+func fileLimit(maxBytes, maxFile int64) int {
+	if maxFile <= 0 {
+		maxFile = maxBytes + maxBytes/8 + fileSlack
+	}
+	if strconv.IntSize == 32 {
+		maxFile = min(maxFile, narrowFile)
+	}
+	return int(maxFile)
+}
+
+func boltOptions(limit int) *bolt.Options {
+	return &bolt.Options{
+		Timeout:         lockWait,
+		FreelistType:    bolt.FreelistMapType,
+		InitialMmapSize: 64 << 20,
+		MaxSize:         limit,
+	}
+}
+
+// guard runs f, and returns as an error what f panics with, be it only a page
+// that the file does not have.
+func guard(f func() error) (err error) {
+	defer debug.SetPanicOnFault(debug.SetPanicOnFault(true))
+	defer func() {
+		if r := recover(); r != nil {
+			err = fmt.Errorf("%w: %v%s", ErrDamaged, r, advice)
+		}
+	}()
+	return f()
+}
+
+// openChecked opens the file and returns it only if nothing is wrong with it.
+func openChecked(path string, limit int) (*bolt.DB, error) {
+	if err := checkLength(path); err != nil {
+		return nil, err
+	}
+	db, err := bolt.Open(path, fileMode, boltOptions(limit))
+	if err != nil {
+		return nil, openError(err)
+	}
+	db.AllocSize = growBytes
+	if err := db.View(check); err != nil {
+		return nil, errors.Join(err, db.Close())
+	}
+	return db, nil
+}
+
+func openError(err error) error {
+	switch {
+	case errors.Is(err, berrors.ErrTimeout):
+		return fmt.Errorf("%w (waited %v); is another agent running?", ErrLocked, lockWait)
+	case errors.Is(err, berrors.ErrInvalid), errors.Is(err, berrors.ErrChecksum), errors.Is(err, berrors.ErrVersionMismatch):
+		return fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
+	}
+	return err
+}
+
+// checkLength looks, without reading more than the first two pages, whether the
+// file has all the pages that it says it has.
+func checkLength(path string) error {
+	o := boltOptions(0)
+	o.ReadOnly = true
+	db, err := bolt.Open(path, fileMode, o)
+	if err != nil {
+		return openError(err)
+	}
+	defer db.Close()
+	info, err := os.Stat(path)
+	if err != nil {
+		return err
+	}
+	return db.View(func(tx *bolt.Tx) error {
+		if info.Size() < tx.Size() {
+			return fmt.Errorf("%w: it has %d bytes of %d%s", ErrDamaged, info.Size(), tx.Size(), advice)
+		}
+		return nil
+	})
+}
+
+// check looks at every page, and at the version.
+func check(tx *bolt.Tx) error {
+	var first error
+	for err := range tx.Check() {
+		if first == nil {
+			first = fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
+		}
+	}
+	if first != nil {
+		return first
+	}
+	meta := tx.Bucket(bucketMeta)
+	if meta == nil {
+		return fmt.Errorf("%w: it has no bucket %q, so it is not a history", ErrVersion, bucketMeta)
+	}
+	v := meta.Get(keyVersion)
+	if len(v) != 4 || binary.LittleEndian.Uint32(v) != Version {
+		return fmt.Errorf("%w: it has % x, this program reads %d; use the program that wrote it", ErrVersion, v, Version)
+	}
+	for _, name := range buckets() {
+		if tx.Bucket(name) == nil {
+			return fmt.Errorf("%w: it has no bucket %q%s", ErrDamaged, name, advice)
+		}
+	}
+	return nil
+}
+
+func buckets() [][]byte {
+	all := [][]byte{bucketMeta, bucketNames, bucketJournal, bucketRecent, bucketMinutes, bucketRegisters, bucketState}
+	for i := range tails {
+		all = append(all, bucketTail(i))
+	}
+	return all
+}
+
+// create makes an empty history at path if nothing is there. It comes under its
+// name only when it is whole, so that a file under that name is never half made.
+func create(path string) error {
+	info, err := os.Stat(path)
+	switch {
+	case err == nil && info.Size() == 0:
+		return fmt.Errorf("%w: it has been cut off, or was never written; restore a backup, or remove it to start a new history", ErrEmptied)
+	case err == nil:
+		return nil
+	case !errors.Is(err, fs.ErrNotExist):
+		return err
+	}
+	temp := path + ".new"
+	if err := os.Remove(temp); err != nil && !errors.Is(err, fs.ErrNotExist) {
+		return err
+	}
+	db, err := bolt.Open(temp, fileMode, boltOptions(0))
+	if err != nil {
+		return openError(err)
+	}
+	if err := errors.Join(db.Update(layOut), db.Close()); err != nil {
+		return err
+	}
+	return moveTo(temp, path)
+}
+
+func layOut(tx *bolt.Tx) error {
+	for _, name := range buckets() {
+		if _, err := tx.CreateBucket(name); err != nil {
+			return err
+		}
+	}
+	// A bucket that holds a bucket is never laid into the root's page, where
+	// these would take the room of the tails.
+	for _, name := range [][]byte{bucketNames, bucketMinutes, bucketState} {
+		if _, err := tx.Bucket(name).CreateBucket(keyPlaceholder); err != nil {
+			return err
+		}
+	}
+	meta := tx.Bucket(bucketMeta)
+	if err := meta.Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version)); err != nil {
+		return err
+	}
+	return meta.Put(keyCreated, binary.LittleEndian.AppendUint64(nil, uint64(time.Now().UnixNano())))
+}
+
+// moveTo renames a closed file and puts the change of name on the disk.
+func moveTo(temp, path string) error {
+	if err := os.Rename(temp, path); err != nil {
+		return err
+	}
+	dir, err := os.Open(filepath.Dir(path))
+	if err != nil {
+		return err
+	}
+	return errors.Join(dir.Sync(), dir.Close())
+}

@@ -1,0 +1,310 @@
+package store
+
+import (
+	"encoding/binary"
+	"fmt"
+	"iter"
+	"math"
+	"time"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// headersAView and minutesAView bound how long a read transaction lasts: pages
+// that it sees cannot be used again before it ends.
+const (
+	headersAView = 4096
+	minutesAView = 4096
+)
+
+func (s *Store) damage(what string, key []byte, err error) error {
+	return fmt.Errorf("history %q: %w: %s with key % x: %w", s.path, ErrDamaged, what, key, err)
+}
+
+// chunk is a group taken out of the file.
+type chunk struct {
+	span
+	records []byte
+}
+
+// chunks yields the groups that hold records after number after and of which
+// want is true, in order; each comes from a read transaction of its own. A group with a
+// damaged header is told as an error and passed over.
+func (s *Store) chunks(after uint64, want func(span) bool) iter.Seq2[chunk, error] {
+	return func(yield func(chunk, error) bool) {
+		for {
+			var c chunk
+			end := true // also when a panic ends the search
+			err := s.view(func(tx *bolt.Tx) (err error) {
+				c, end, err = s.nextChunk(tx, &after, want)
+				return err
+			})
+			if (c.records != nil || err != nil) && !yield(c, err) {
+				return
+			}
+			if end {
+				return
+			}
+		}
+	}
+}
+
+// nextChunk looks for the next wanted group and moves after past what it has
+// looked at. end tells that nothing comes after it.
+func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c chunk, end bool, err error) {
+	cursor := tx.Bucket(bucketJournal).Cursor()
+	k, v := seekGroup(cursor, *after+1)
+	for range headersAView {
+		if k == nil {
+			c, err = s.openChunk(tx, *after, want)
+			return c, true, err
+		}
+		head, err := parseHeader(k, v)
+		if err != nil {
+			err = s.damage("group", k, err)
+			if k, _ = cursor.Next(); k == nil {
+				return c, true, err
+			}
+			*after = binary.BigEndian.Uint64(k) - 1
+			return c, false, err
+		}
+		fresh := head.last > *after
+		*after = max(*after, head.last)
+		if fresh && want(head) {
+			return chunk{head, append([]byte{}, v[headerBytes:]...)}, false, nil
+		}
+		k, v = cursor.Next()
+	}
+	return c, false, nil
+}
+
+// seekGroup finds the group with record seq, or the first one after it.
+func seekGroup(c *bolt.Cursor, seq uint64) (k, v []byte) {
+	k, v = c.Seek(sequenceKey(seq))
+	if k != nil && binary.BigEndian.Uint64(k) == seq {
+		return k, v
+	}
+	if k, v = c.Prev(); k == nil {
+		return c.First()
+	}
+	return k, v
+}
+
+// openChunk returns the open group.
+func (s *Store) openChunk(tx *bolt.Tx, after uint64, want func(span) bool) (chunk, error) {
+	g, err := loadOpen(tx)
+	if err != nil {
+		return chunk{}, s.damage("open group", nil, err)
+	}
+	if g.last < g.first || g.last <= after || !want(g.span) {
+		return chunk{}, nil
+	}
+	return chunk{g.span, append(recentRecords(tx), g.tail...)}, nil
+}
+
+// each calls f with the records of c in order until f returns false.
+func (c *chunk) each(f func(seq uint64, beats []Beat) bool) error {
+	p, m := parser{rest: c.records}, newMemory()
+	for seq := c.first; seq <= c.last; seq++ {
+		beats, err := p.record(seq, m)
+		if err != nil {
+			return fmt.Errorf("%w: record %d: %w", ErrDamaged, seq, err)
+		}
+		if !f(seq, beats) {
+			return nil
+		}
+	}
+	return nil
+}
+
+// beats yields the beats of all records numbered in (after, upTo].
+func (s *Store) beats(after, upTo uint64, want func(span) bool) iter.Seq2[Beat, error] {
+	return func(yield func(Beat, error) bool) {
+		for c, err := range s.chunks(after, want) {
+			if err != nil {
+				if !yield(Beat{}, err) {
+					return
+				}
+				continue
+			}
+			if c.first > upTo {
+				return
+			}
+			stopped := false
+			err := c.each(func(seq uint64, beats []Beat) bool {
+				if seq <= after {
+					return true
+				}
+				for i := 0; i < len(beats) && seq <= upTo && !stopped; i++ {
+					stopped = !yield(beats[i], nil)
+				}
+				return seq < upTo && !stopped
+			})
+			if stopped || err != nil && !yield(Beat{}, fmt.Errorf("history %q: %w", s.path, err)) {
+				return
+			}
+		}
+	}
+}
+
+func every(span) bool { return true }
+
+// Since yields the beats of the batches that were committed after the last
+// checkpoint, in the order of commitment; without a checkpoint, all there are.
+// Put through the engine that was restored from [Store.Checkpoint], they bring it
+// to where it was.
+func (s *Store) Since() iter.Seq2[Beat, error] {
+	return func(yield func(Beat, error) bool) {
+		seq, _, err := s.mark()
+		if err != nil {
+			yield(Beat{}, err)
+			return
+		}
+		s.beats(seq, math.MaxUint64, every)(yield)
+	}
+}
+
+// Before yields, in the order of commitment, the beats that the last checkpoint
+// stands for and whose Through is not more than d before that of the newest of
+// them. With them the caller knows again what the broker delivers a second time.
+func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
+	return func(yield func(Beat, error) bool) {
+		seq, ok, err := s.mark()
+		if err != nil {
+			yield(Beat{}, err)
+			return
+		}
+		if !ok || seq == 0 {
+			return
+		}
+		var newest int64
+		for b, err := range s.beats(seq-1, seq, every) {
+			if err != nil {
+				yield(Beat{}, err)
+				return
+			}
+			newest = b.Through
+		}
+		from := newest - int64(d)
+		start, err := s.groupBefore(seq, from)
+		if err != nil {
+			yield(Beat{}, err)
+			return
+		}
+		for b, err := range s.beats(start, seq, every) {
+			if (err != nil || b.Through >= from) && !yield(b, err) {
+				return
+			}
+		}
+	}
+}
+
+// mark returns the number of the last record that the checkpoint stands for.
+func (s *Store) mark() (seq uint64, ok bool, err error) {
+	err = s.view(func(tx *bolt.Tx) error {
+		seq, _, ok, err = readCheckpoint(tx)
+		if err != nil {
+			return s.damage("engine state", keyCheckpoint, err)
+		}
+		return nil
+	})
+	return seq, ok, err
+}
+
+// groupBefore goes back from the group of record seq until one holds nothing at
+// from or later, and returns the number of its last record.
+func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
+	err = s.view(func(tx *bolt.Tx) error {
+		c := tx.Bucket(bucketJournal).Cursor()
+		for k, v := seekGroup(c, seq); k != nil; k, v = c.Prev() {
+			head, err := parseHeader(k, v)
+			if err != nil {
+				return s.damage("group", k, err)
+			}
+			if head.latest < from {
+				last = head.last
+				return nil
+			}
+		}
+		return nil
+	})
+	return last, err
+}
+
+// Readings yields the readings of a tag with from <= At < to, in the order in
+// which they were committed. That is the order of At but for late ones. A reading that
+// was committed twice comes twice. The store may be written to meanwhile.
+// After an error the next group is tried, unless the caller stops.
+func (s *Store) Readings(tag uint32, from, to int64) iter.Seq2[Reading, error] {
+	want := func(g span) bool { return g.overlaps(from, to) }
+	return func(yield func(Reading, error) bool) {
+		for b, err := range s.beats(0, math.MaxUint64, want) {
+			if err != nil {
+				if !yield(Reading{}, err) {
+					return
+				}
+				continue
+			}
+			for _, r := range b.Readings {
+				if r.Tag == tag && r.At >= from && r.At < to && !yield(r, nil) {
+					return
+				}
+			}
+		}
+	}
+}
+
+// Minutes yields the minutes of a load with from <= Start < to, by Start. The
+// store may be written to meanwhile. A damaged record is told as an error and
+// passed over, unless the caller stops.
+func (s *Store) Minutes(load uint32, from, to int64) iter.Seq2[Minute, error] {
+	return func(yield func(Minute, error) bool) {
+		key, end := timeKey(from), timeKey(to)
+		for key != nil {
+			found, next, err := s.minutesFrom(key, end, load)
+			if err != nil {
+				yield(Minute{}, err)
+				return
+			}
+			for _, f := range found {
+				if !yield(f.minute, f.err) {
+					return
+				}
+			}
+			key = next
+		}
+	}
+}
+
+type foundMinute struct {
+	minute Minute
+	err    error
+}
+
+// minutesFrom looks at some records from key on. next is where to go on, nil at
+// the end.
+func (s *Store) minutesFrom(key, end []byte, load uint32) (found []foundMinute, next []byte, err error) {
+	err = s.view(func(tx *bolt.Tx) error {
+		c := tx.Bucket(bucketMinutes).Cursor()
+		k, v := c.Seek(key)
+		for range minutesAView {
+			if k == nil || string(k) >= string(end) {
+				return nil
+			}
+			if len(k) == 12 && binary.BigEndian.Uint32(k[8:]) == load {
+				m, err := parseMinute(k, v)
+				if err != nil {
+					err = s.damage("minute", k, err)
+				}
+				found = append(found, foundMinute{m, err})
+			}
+			k, v = c.Next()
+		}
+		next = append([]byte{}, k...)
+		return nil
+	})
+	if len(next) == 0 {
+		next = nil
+	}
+	return found, next, err
+}

@@ -1,0 +1,236 @@
+package store
+
+import (
+	"encoding/binary"
+	"errors"
+	"fmt"
+	"log/slog"
+	"strings"
+	"sync"
+	"sync/atomic"
+	"syscall"
+	"time"
+
+	bolt "go.etcd.io/bbolt"
+	berrors "go.etcd.io/bbolt/errors"
+)
+
+var (
+	bucketMeta      = []byte("meta")
+	bucketNames     = []byte("names")
+	bucketJournal   = []byte("journal")
+	bucketRecent    = []byte("recent")
+	bucketMinutes   = []byte("minutes")
+	bucketRegisters = []byte("registers")
+	bucketState     = []byte("state")
+
+	keyVersion    = []byte("version")
+	keyCreated    = []byte("created")
+	keyTail       = []byte("t")
+	keyCheckpoint = []byte("checkpoint")
+
+	// keyPlaceholder names an empty bucket inside those that must have a page of
+	// their own.
+	keyPlaceholder = []byte{0}
+
+	// keyFirstMinute is where the minutes begin, after the placeholder.
+	keyFirstMinute = []byte{0, 0}
+)
+
+// tails is how many small buckets hold the end of the open group. Three of the
+// largest that bbolt keeps inside the root's page fit there beside the rest.
+const tails = 3
+
+func bucketTail(i int) []byte { return []byte{'t', 'a', 'i', 'l', byte('0' + i)} }
+
+// Options are what the history may take. The zero value sets no bounds on age,
+// and the default bounds on bytes.
+type Options struct {
+	// MaxAge is how long readings and minutes are kept; 0 keeps them until
+	// MaxBytes is reached.
+	MaxAge time.Duration
+	// MaxBytes bounds the pages in use; 0 stands for 256 MiB. Trim keeps to it.
+	MaxBytes int64
+	// MaxFile bounds the file, which holds free pages as well. At this size
+	// Commit fails, and IsFull tells so. 0 stands for MaxBytes and an eighth and
+	// 16 MiB more, and on a 32-bit machine for no more than 400 MB.
+	MaxFile int64
+	// Log hears of a compaction at Open; nil is silence.
+	Log *slog.Logger
+}
+
+// Store is an open history. One goroutine at a time writes; any number may read
+// meanwhile.
+type Store struct {
+	db       *bolt.DB
+	path     string
+	maxAge   time.Duration
+	maxBytes int64
+	piece    int // bytes that one tail bucket may hold
+
+	used atomic.Int64
+
+	mu     sync.Mutex // guards open and closed, and is held while writing
+	open   *openGroup // nil: to be read from the file before the next record
+	closed bool
+}
+
+// Commit writes b in one transaction, which is on the disk when Commit returns
+// nil. When it fails nothing of b is kept and the store goes on; if [IsFull] holds
+// for the error, the same batch can be tried again after a [Store.Trim].
+func (s *Store) Commit(b Batch) error {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	open := s.open
+	s.open = nil
+	err := s.update(func(tx *bolt.Tx) (err error) {
+		if open == nil {
+			if open, err = loadOpen(tx); err != nil {
+				return err
+			}
+		}
+		return s.write(tx, b, open)
+	})
+	if err != nil {
+		return fmt.Errorf("commit to history %q: %w", s.path, err)
+	}
+	s.open = open
+	return nil
+}
+
+func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
+	if len(b.Beats) > 0 {
+		last := open.last
+		if err := open.add(tx, b.Beats, s.piece); err != nil {
+			return fmt.Errorf("record %d: %w", last+1, err)
+		}
+	}
+	if len(b.Minutes) > 0 {
+		minutes := tx.Bucket(bucketMinutes)
+		minutes.FillPercent = appendFill
+		for _, m := range b.Minutes {
+			if err := minutes.Put(minuteKey(m.Start, m.Load), appendMinute(nil, m)); err != nil {
+				return fmt.Errorf("minute of load %d: %w", m.Load, err)
+			}
+		}
+	}
+	for _, r := range b.Registers {
+		if err := tx.Bucket(bucketRegisters).Put(loadKey(r.Load), registerValue(r)); err != nil {
+			return fmt.Errorf("register of load %d: %w", r.Load, err)
+		}
+	}
+	if b.Checkpoint != nil {
+		return putCheckpoint(tx, open.last, b.Checkpoint)
+	}
+	return nil
+}
+
+// IsFull tells whether err came of a full disk, or of the file having reached
+// its greatest size.
+func IsFull(err error) bool {
+	if err == nil {
+		return false
+	}
+	// bbolt drops the cause where growing the file fails, so the text is asked too.
+	return errors.Is(err, berrors.ErrMaxSizeReached) || errors.Is(err, syscall.ENOSPC) ||
+		errors.Is(err, syscall.EDQUOT) || strings.Contains(err.Error(), syscall.ENOSPC.Error())
+}
+
+// update runs f in a read-write transaction. s.mu is held.
+func (s *Store) update(f func(*bolt.Tx) error) error {
+	if s.closed {
+		return berrors.ErrDatabaseNotOpen
+	}
+	err := guard(func() error { return s.db.Update(f) })
+	s.measure()
+	return err
+}
+
+func (s *Store) view(f func(*bolt.Tx) error) error {
+	return guard(func() error { return s.db.View(f) })
+}
+
+// measure counts the pages in use. Only a closed database refuses, and then the
+// count stays as it is.
+func (s *Store) measure() {
+	if _, used, err := usage(s.db); err == nil {
+		s.used.Store(used)
+	}
+}
+
+// Bytes returns how much of the file is in use. The file itself is longer by
+// its free pages: it does not shrink while open.
+func (s *Store) Bytes() int64 { return s.used.Load() }
+
+// Close closes the file. A second Close does nothing.
+func (s *Store) Close() error {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if s.closed {
+		return nil
+	}
+	s.closed = true
+	return s.db.Close()
+}
+
+// ID returns the number that stands for name among those of kind ("tag",
+// "load"), giving it the next free one if it has none yet.
+func (s *Store) ID(kind, name string) (uint32, error) {
+	ids, err := s.IDs(kind, []string{name})
+	if err != nil {
+		return 0, err
+	}
+	return ids[0], nil
+}
+
+// IDs is ID for many names in one transaction. When all are known it writes
+// nothing.
+func (s *Store) IDs(kind string, names []string) ([]uint32, error) {
+	ids := make([]uint32, len(names))
+	known := true
+	err := s.view(func(tx *bolt.Tx) error {
+		for i, name := range names {
+			v := tx.Bucket(bucketNames).Get(nameKey(kind, name))
+			if len(v) != 4 {
+				known = false
+				return nil
+			}
+			ids[i] = binary.BigEndian.Uint32(v)
+		}
+		return nil
+	})
+	if err != nil || known {
+		return ids, err
+	}
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	err = s.update(func(tx *bolt.Tx) error {
+		for i, name := range names {
+			if ids[i], err = nameID(tx.Bucket(bucketNames), kind, name); err != nil {
+				return fmt.Errorf("%s %q: %w", kind, name, err)
+			}
+		}
+		return nil
+	})
+	if err != nil {
+		return nil, fmt.Errorf("number the names in history %q: %w", s.path, err)
+	}
+	return ids, nil
+}
+
+func nameKey(kind, name string) []byte { return []byte(kind + "\x00" + name) }
+
+func nameID(names *bolt.Bucket, kind, name string) (uint32, error) {
+	if kind == "" || strings.Contains(kind, "\x00") {
+		return 0, fmt.Errorf("kind %q is empty or holds a zero byte", kind)
+	}
+	key := nameKey(kind, name)
+	if v := names.Get(key); len(v) == 4 {
+		return binary.BigEndian.Uint32(v), nil
+	}
+	next, err := names.NextSequence()
+	if err != nil {
+		return 0, err
+	}
+	return uint32(next), names.Put(key, binary.BigEndian.AppendUint32(nil, uint32(next)))
+}
