@@ -72,6 +72,11 @@ func BenchmarkCommit(b *testing.B) {
 				b.ReportMetric(float64(s.Bytes()-used)/readings, "B/kept")
 			}
 		})
+		b.Run(fmt.Sprintf("%ds/with-loads", seconds), func(b *testing.B) {
+			for b.Loop() {
+				benchmarkWhole(b, commits, seconds)
+			}
+		})
 		b.Run(fmt.Sprintf("%ds/one-key-each", seconds), func(b *testing.B) {
 			for b.Loop() {
 				benchmarkPlain(b, commits, seconds)
@@ -80,8 +85,38 @@ func BenchmarkCommit(b *testing.B) {
 	}
 }
 
+// benchmarkWhole adds what 10 loads bring: registers with each commit, and each
+// minute their records and 4 kB of state.
+func benchmarkWhole(b *testing.B, commits, seconds int) {
+	s := newStore(b, Options{})
+	w := newWalk(50)
+	before, used := written(s.db, 0), s.Bytes()
+	for i := range commits {
+		batch := Batch{Beats: w.beats(seconds)}
+		for load := range uint32(10) {
+			batch.Registers = append(batch.Registers, Register{Load: load, Given: 1e9 * float64(i), Measured: float64(i * seconds)})
+			if i*seconds%60 == 0 {
+				v := 1e5 / float64(i+3)
+				batch.Minutes = append(batch.Minutes, Minute{Load: load, Start: w.at / (60 * second) * 60 * second, Measured: 60,
+					Given: 60 * v, Duty: v, DutyMin: v * 0.99, DutyMax: v * 1.01, DutyUncertainty: v / 99, Flow: v / 12345,
+					Inlet: 350.1 + v/9999, Outlet: 340.2 + v/9999, Pressure: 5.1e5 + v})
+			}
+		}
+		if i*seconds%60 == 0 {
+			batch.Checkpoint = make([]byte, 4000)
+		}
+		commit(b, s, batch)
+	}
+	readings := float64(commits * seconds * 5)
+	b.ReportMetric(float64(written(s.db, commits)-before)/readings, "B/reading")
+	b.ReportMetric(float64(s.Bytes()-used)/readings, "B/kept")
+}
+
+// benchmarkPlain puts each reading under a key of its own, by time and tag.
 func benchmarkPlain(b *testing.B, commits, seconds int) {
-	db, err := bolt.Open(filepath.Join(b.TempDir(), "plain.db"), fileMode, boltOptions(0))
+	o := boltOptions(0)
+	o.NoFreelistSync = false // as bbolt has it by default
+	db, err := bolt.Open(filepath.Join(b.TempDir(), "plain.db"), fileMode, o)
 	if err != nil {
 		b.Fatal(err)
 	}

@@ -15,12 +15,15 @@
 //	meta       "version"  uint32: 1
 //	           "created"  int64: Unix nanoseconds at creation
 //	names      kind 00 name -> uint32 id, big-endian
-//	journal    uint64 sequence of the first record -> a closed group
-//	recent     uint64 sequence of the first record -> part of the open group
-//	tail0..2   "t" -> the last part of the open group, cut in pieces
+//	journal    a bucket for each closed group, by its name; in it "r" -> records
+//	recent     a bucket for each part of the open group, by the uint64 sequence
+//	           of its first record; in it "r" -> records
+//	tail0..2   "r" -> the last records of the open group, cut in pieces
 //	minutes    int64 start, uint32 load -> a minute record
 //	registers  uint32 load -> 4 float64 (given, taken, measured, missing), CRC
-//	state      "checkpoint" -> uint64 sequence, int64 through, opaque bytes, CRC
+//	state      "checkpoint" -> uint64 sequence, opaque bytes, CRC
+//
+// names, minutes and state also hold an empty bucket named 00.
 //
 // Each batch that has beats makes one record, and records are numbered from 1
 // without a gap. A record is
@@ -57,13 +60,14 @@
 // Records that share this memory form a group. The memory starts empty with
 // each group. The open group lies in recent and, after that, in the three tails
 // taken as one run of bytes; once it holds 48 KiB it is closed and becomes one
-// value of journal:
+// value under this name:
 //
-//	uint64 last sequence, int64 earliest, int64 latest, CRC, records
+//	uint64 first sequence, big-endian; uint64 last sequence, int64 earliest,
+//	int64 latest, uint32 readings, CRC
 //
-// Earliest and latest bound the times of all readings and beats in the group,
-// and serve to pass over groups when a span of time is asked for: there is no
-// other index. The checksum covers key and times; the records have their own.
+// Earliest and latest bound the times of all beats and readings in the group,
+// and readings is how many there are. The names are the only index by time:
+// a search looks at all of them, some fifty to a page.
 //
 // A minute record tells its 12 floats in the order of the fields of [Minute]
 // after Start: 6 bytes of 4-bit counts (low half first), the bytes of each float

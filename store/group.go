@@ -11,8 +11,8 @@ import (
 // groupBytes is how much a group holds before it is closed.
 const groupBytes = 48 << 10
 
-// headerBytes is the length of what stands before the records of a closed group.
-const headerBytes = 32
+// nameBytes is the length of a closed group's name.
+const nameBytes = 40
 
 // appendFill is the share of a page that append-only keys may fill. bbolt does
 // not store it, so that each transaction sets it again.
@@ -48,26 +48,39 @@ func (s *span) cover(t int64) {
 // overlaps tells whether the group may hold something in [from, to).
 func (s *span) overlaps(from, to int64) bool { return s.latest >= from && s.earliest < to }
 
-func (s *span) header() []byte {
-	b := binary.LittleEndian.AppendUint64(nil, s.last)
+// name is what a closed group is called in the journal.
+func (s *span) name() []byte {
+	b := sequenceKey(s.first)
+	b = binary.LittleEndian.AppendUint64(b, s.last)
 	b = binary.LittleEndian.AppendUint64(b, uint64(s.earliest))
 	b = binary.LittleEndian.AppendUint64(b, uint64(s.latest))
 	b = binary.LittleEndian.AppendUint32(b, s.readings)
-	return binary.LittleEndian.AppendUint32(b, checksum(sequenceKey(s.first), b))
+	return binary.LittleEndian.AppendUint32(b, checksum(nil, b))
 }
 
-func parseHeader(key, value []byte) (span, error) {
-	if len(key) != 8 || len(value) < headerBytes ||
-		binary.LittleEndian.Uint32(value[28:]) != checksum(key, value[:28]) {
+func parseName(b []byte) (span, error) {
+	if len(b) != nameBytes || binary.LittleEndian.Uint32(b[36:]) != checksum(nil, b[:36]) {
 		return span{}, errRecord
 	}
 	return span{
-		first:    binary.BigEndian.Uint64(key),
-		last:     binary.LittleEndian.Uint64(value),
-		earliest: int64(binary.LittleEndian.Uint64(value[8:])),
-		latest:   int64(binary.LittleEndian.Uint64(value[16:])),
-		readings: binary.LittleEndian.Uint32(value[24:]),
+		first:    binary.BigEndian.Uint64(b),
+		last:     binary.LittleEndian.Uint64(b[8:]),
+		earliest: int64(binary.LittleEndian.Uint64(b[16:])),
+		latest:   int64(binary.LittleEndian.Uint64(b[24:])),
+		readings: binary.LittleEndian.Uint32(b[32:]),
 	}, nil
+}
+
+// putRecords stores a long run of records in a bucket of its own under name.
+// As a plain value it would be written again with each of the next few, because
+// bbolt keeps two keys and more in every page.
+func putRecords(b *bolt.Bucket, name, records []byte) error {
+	b.FillPercent = appendFill
+	own, err := b.CreateBucket(name)
+	if err != nil {
+		return err
+	}
+	return own.Put(keyRecords, records)
 }
 
 // openGroup is the group that still grows: what of it lies in recent, and its
@@ -99,9 +112,7 @@ func (g *openGroup) add(tx *bolt.Tx, beats []Beat, pieceBytes int) error {
 
 // flush moves the tail to recent.
 func (g *openGroup) flush(tx *bolt.Tx) error {
-	recent := tx.Bucket(bucketRecent)
-	recent.FillPercent = appendFill
-	if err := recent.Put(sequenceKey(g.tailFirst), g.tail); err != nil {
+	if err := putRecords(tx.Bucket(bucketRecent), sequenceKey(g.tailFirst), g.tail); err != nil {
 		return err
 	}
 	g.recentBytes += len(g.tail)
@@ -111,10 +122,8 @@ func (g *openGroup) flush(tx *bolt.Tx) error {
 
 // close writes the whole group to journal and begins a new one.
 func (g *openGroup) close(tx *bolt.Tx) error {
-	journal := tx.Bucket(bucketJournal)
-	journal.FillPercent = appendFill
-	value := append(g.header(), recentRecords(tx)...)
-	if err := journal.Put(sequenceKey(g.first), append(value, g.tail...)); err != nil {
+	records := append(recentRecords(tx), g.tail...)
+	if err := putRecords(tx.Bucket(bucketJournal), g.name(), records); err != nil {
 		return err
 	}
 	if g.recentBytes > 0 {
@@ -131,9 +140,12 @@ func (g *openGroup) close(tx *bolt.Tx) error {
 
 // recentRecords returns what of the open group lies in recent.
 func recentRecords(tx *bolt.Tx) (b []byte) {
-	c := tx.Bucket(bucketRecent).Cursor()
+	recent := tx.Bucket(bucketRecent)
+	c := recent.Cursor()
 	for k, v := c.First(); k != nil; k, v = c.Next() {
-		b = append(b, v...)
+		if v == nil {
+			b = append(b, recent.Bucket(k).Get(keyRecords)...)
+		}
 	}
 	return b
 }
@@ -144,12 +156,12 @@ func putTail(tx *bolt.Tx, b []byte, pieceBytes int) error {
 		bucket := tx.Bucket(bucketTail(i))
 		n := min(len(b), pieceBytes)
 		if n == 0 {
-			if err := bucket.Delete(keyTail); err != nil {
+			if err := bucket.Delete(keyRecords); err != nil {
 				return err
 			}
 			continue
 		}
-		if err := bucket.Put(keyTail, b[:n]); err != nil {
+		if err := bucket.Put(keyRecords, b[:n]); err != nil {
 			return err
 		}
 		b = b[n:]
@@ -159,7 +171,7 @@ func putTail(tx *bolt.Tx, b []byte, pieceBytes int) error {
 
 func tailRecords(tx *bolt.Tx) (b []byte) {
 	for i := range tails {
-		b = append(b, tx.Bucket(bucketTail(i)).Get(keyTail)...)
+		b = append(b, tx.Bucket(bucketTail(i)).Get(keyRecords)...)
 	}
 	return b
 }
@@ -167,8 +179,8 @@ func tailRecords(tx *bolt.Tx) (b []byte) {
 // loadOpen reads the open group back, and with it the memory of the writer.
 func loadOpen(tx *bolt.Tx) (*openGroup, error) {
 	first := uint64(1)
-	if k, v := tx.Bucket(bucketJournal).Cursor().Last(); k != nil {
-		closed, err := parseHeader(k, v)
+	if k, _ := tx.Bucket(bucketJournal).Cursor().Last(); k != nil {
+		closed, err := parseName(k)
 		if err != nil {
 			return nil, fmt.Errorf("last group of the journal: %w", err)
 		}

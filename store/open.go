@@ -37,6 +37,13 @@ const (
 	fileSlack    = 16 << 20
 	narrowFile   = 400 << 20 // greatest file where addresses have 32 bits
 	growBytes    = 1 << 20
+
+	// pieceMargin is what the tails leave free of a quarter page each, which is
+	// the most that bbolt keeps inside another page. With it the root's page has
+	// room for three tails, the greatest inline registers, and the rest, which
+	// takes 583 bytes: 583 + 3·(P/4 − 192) + P/4 − 16 = P − 9.
+	pieceMargin = 192
+
 	fileMode     = 0o600
 )
 
@@ -76,7 +83,7 @@ func open(path string, o Options) (*Store, error) {
 	if err != nil {
 		return nil, err
 	}
-	s.piece = s.db.Info().PageSize/4 - 256
+	s.piece = s.db.Info().PageSize/4 - pieceMargin
 	err = s.view(func(tx *bolt.Tx) (err error) {
 		s.open, err = loadOpen(tx)
 		return err
@@ -98,10 +105,14 @@ func fileLimit(maxBytes, maxFile int64) int {
 	return int(maxFile)
 }
 
+// boltOptions keeps the list of free pages out of the file, which spares each
+// commit a page. It is made anew at Open, from the same walk over all pages
+// that is needed to find damage.
 func boltOptions(limit int) *bolt.Options {
 	return &bolt.Options{
 		Timeout:         lockWait,
 		FreelistType:    bolt.FreelistMapType,
+		NoFreelistSync:  true,
 		InitialMmapSize: 64 << 20,
 		MaxSize:         limit,
 	}
@@ -121,7 +132,7 @@ func guard(f func() error) (err error) {
 
 // openChecked opens the file and returns it only if nothing is wrong with it.
 func openChecked(path string, limit int) (*bolt.DB, error) {
-	if err := checkLength(path); err != nil {
+	if err := checkFile(path); err != nil {
 		return nil, err
 	}
 	db, err := bolt.Open(path, fileMode, boltOptions(limit))
@@ -129,9 +140,6 @@ func openChecked(path string, limit int) (*bolt.DB, error) {
 		return nil, openError(err)
 	}
 	db.AllocSize = growBytes
-	if err := db.View(check); err != nil {
-		return nil, errors.Join(err, db.Close())
-	}
 	return db, nil
 }
 
@@ -145,39 +153,34 @@ func openError(err error) error {
 	return err
 }
 
-// checkLength looks, without reading more than the first two pages, whether the
-// file has all the pages that it says it has.
-func checkLength(path string) error {
+// checkFile looks at every page before bbolt does.
+func checkFile(path string) error {
 	o := boltOptions(0)
 	o.ReadOnly = true
-	db, err := bolt.Open(path, fileMode, o)
+	db, err := bolt.Open(path, fileMode, o) // reads two pages only, and takes the lock
 	if err != nil {
 		return openError(err)
 	}
 	defer db.Close()
-	info, err := os.Stat(path)
+	f, err := os.Open(path)
+	if err != nil {
+		return err
+	}
+	defer f.Close()
+	info, err := f.Stat()
 	if err != nil {
 		return err
 	}
 	return db.View(func(tx *bolt.Tx) error {
-		if info.Size() < tx.Size() {
-			return fmt.Errorf("%w: it has %d bytes of %d%s", ErrDamaged, info.Size(), tx.Size(), advice)
+		if err := checkPages(tx, f, info.Size()); err != nil {
+			return fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
 		}
-		return nil
+		return checkLayout(tx)
 	})
 }
 
-// check looks at every page, and at the version.
-func check(tx *bolt.Tx) error {
-	var first error
-	for err := range tx.Check() {
-		if first == nil {
-			first = fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
-		}
-	}
-	if first != nil {
-		return first
-	}
+// checkLayout looks at the version and for the buckets.
+func checkLayout(tx *bolt.Tx) error {
 	meta := tx.Bucket(bucketMeta)
 	if meta == nil {
 		return fmt.Errorf("%w: it has no bucket %q, so it is not a history", ErrVersion, bucketMeta)

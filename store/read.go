@@ -52,14 +52,15 @@ func (s *Store) chunks(after uint64, want func(span) bool) iter.Seq2[chunk, erro
 // nextChunk looks for the next wanted group and moves after past what it has
 // looked at. end tells that nothing comes after it.
 func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c chunk, end bool, err error) {
-	cursor := tx.Bucket(bucketJournal).Cursor()
-	k, v := seekGroup(cursor, *after+1)
+	journal := tx.Bucket(bucketJournal)
+	cursor := journal.Cursor()
+	k := seekGroup(cursor, *after+1)
 	for range headersAView {
 		if k == nil {
 			c, err = s.openChunk(tx, *after, want)
 			return c, true, err
 		}
-		head, err := parseHeader(k, v)
+		head, err := parseName(k)
 		if err != nil {
 			err = s.damage("group", k, err)
 			if k, _ = cursor.Next(); k == nil {
@@ -71,23 +72,27 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 		fresh := head.last > *after
 		*after = max(*after, head.last)
 		if fresh && want(head) {
-			return chunk{head, append([]byte{}, v[headerBytes:]...)}, false, nil
+			own := journal.Bucket(k)
+			if own == nil {
+				return c, false, s.damage("group", k, errRecord)
+			}
+			return chunk{head, append([]byte{}, own.Get(keyRecords)...)}, false, nil
 		}
-		k, v = cursor.Next()
+		k, _ = cursor.Next()
 	}
 	return c, false, nil
 }
 
 // seekGroup finds the group with record seq, or the first one after it.
-func seekGroup(c *bolt.Cursor, seq uint64) (k, v []byte) {
-	k, v = c.Seek(sequenceKey(seq))
+func seekGroup(c *bolt.Cursor, seq uint64) []byte {
+	k, _ := c.Seek(sequenceKey(seq))
 	if k != nil && binary.BigEndian.Uint64(k) == seq {
-		return k, v
+		return k
 	}
-	if k, v = c.Prev(); k == nil {
-		return c.First()
+	if k, _ = c.Prev(); k == nil {
+		k, _ = c.First()
 	}
-	return k, v
+	return k
 }
 
 // openChunk returns the open group.
@@ -216,8 +221,8 @@ func (s *Store) mark() (seq uint64, ok bool, err error) {
 func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 	err = s.view(func(tx *bolt.Tx) error {
 		c := tx.Bucket(bucketJournal).Cursor()
-		for k, v := seekGroup(c, seq); k != nil; k, v = c.Prev() {
-			head, err := parseHeader(k, v)
+		for k := seekGroup(c, seq); k != nil; k, _ = c.Prev() {
+			head, err := parseName(k)
 			if err != nil {
 				return s.damage("group", k, err)
 			}

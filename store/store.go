@@ -26,7 +26,7 @@ var (
 
 	keyVersion    = []byte("version")
 	keyCreated    = []byte("created")
-	keyTail       = []byte("t")
+	keyRecords    = []byte("r")
 	keyCheckpoint = []byte("checkpoint")
 
 	// keyPlaceholder names an empty bucket inside those that must have a page of

@@ -27,13 +27,13 @@ func openStore(t testing.TB, path string, o Options) *Store {
 		if err := s.Close(); err != nil {
 			t.Errorf("close: %v", err)
 		}
-		checkFile(t, path)
+		boltCheck(t, path)
 	})
 	return s
 }
 
-// checkFile runs bbolt's own check on a closed file.
-func checkFile(t testing.TB, path string) {
+// boltCheck runs bbolt's own check on a closed file.
+func boltCheck(t testing.TB, path string) {
 	t.Helper()
 	db, err := bolt.Open(path, fileMode, boltOptions(0))
 	if err != nil {
@@ -124,7 +124,7 @@ func TestResume(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
-	checkFile(t, path)
+	boltCheck(t, path)
 }
 
 func testBefore(t *testing.T, s *Store, all []Beat) {

@@ -68,29 +68,45 @@ func (s *Store) trimGroups(tx *bolt.Tx, old int64, t *Trimmed) (more bool, err e
 	if err != nil {
 		return false, s.damage("engine state", keyCheckpoint, err)
 	}
-	page := int64(s.db.Info().PageSize)
-	excess := s.excess()
-	c := tx.Bucket(bucketJournal).Cursor()
-	k, v := c.First()
-	for range groupsATrim {
-		if k == nil {
-			return false, nil
-		}
-		head, err := parseHeader(k, v)
-		if err != nil {
-			return false, s.damage("group", k, err)
-		}
-		if head.last >= mark || head.latest >= old && excess <= 0 {
-			return false, nil
-		}
-		excess -= (int64(len(k)+len(v)+perKey) + page - 1) / page * page
-		t.Readings += int64(head.readings)
-		if err := c.Delete(); err != nil {
+	journal := tx.Bucket(bucketJournal)
+	names, err := s.doomed(journal, mark, old)
+	if err != nil {
+		return false, err
+	}
+	for _, name := range names {
+		if err := journal.DeleteBucket(name); err != nil {
 			return false, err
 		}
-		k, v = c.Next()
+		head, err := parseName(name)
+		if err != nil {
+			return false, err
+		}
+		t.Readings += int64(head.readings)
 	}
-	return true, nil
+	return len(names) == groupsATrim, nil
+}
+
+// doomed returns the names of the groups to remove, oldest first.
+func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old int64) (names [][]byte, err error) {
+	page := int64(s.db.Info().PageSize)
+	excess := s.excess()
+	c := journal.Cursor()
+	for k, _ := c.First(); k != nil && len(names) < groupsATrim; k, _ = c.Next() {
+		head, err := parseName(k)
+		if err != nil {
+			return nil, s.damage("group", k, err)
+		}
+		if head.last >= mark || head.latest >= old && excess <= 0 {
+			break
+		}
+		size := 0
+		if own := journal.Bucket(k); own != nil {
+			size = len(own.Get(keyRecords))
+		}
+		excess -= (int64(size) + page) / page * page
+		names = append(names, append([]byte{}, k...))
+	}
+	return names, nil
 }
 
 // trimMinutes does with the minutes as trimGroups does with the journal.
