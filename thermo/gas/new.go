@@ -9,6 +9,7 @@ import (
 	"strings"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/unit/near"
 )
 
 // Species returns the formulas that New knows.
@@ -78,35 +79,33 @@ type component struct {
 }
 
 func lookup(formula string) (*species, error) {
-	var near []string
 	for k := range table {
-		s := &table[k]
-		if s.formula == formula {
-			return s, nil
-		}
-		if alike(formula, s) {
-			near = append(near, fmt.Sprintf("%q (%s)", s.formula, s.name))
+		if table[k].formula == formula {
+			return &table[k], nil
 		}
 	}
 	hint := ""
-	if len(near) > 0 {
-		hint = ", did you mean " + strings.Join(near, " or ")
+	if guess := meant(formula); len(guess) > 0 {
+		hint = ", did you mean " + strings.Join(guess, " or ")
 	}
 	return nil, fmt.Errorf("unknown gas %q%s; known gases: %s", formula, hint, strings.Join(Species(), ", "))
 }
 
-// alike tells whether a word may stand for s: the formula in the wrong case,
-// with or without a figure, or the beginning of the name.
-func alike(word string, s *species) bool {
-	w := strings.ToLower(strings.TrimSpace(word))
-	f := strings.ToLower(s.formula)
-	switch {
-	case w == "":
-		return false
-	case w == f || strings.TrimRight(f, "0123456789") == w || strings.TrimRight(w, "0123456789") == f:
-		return true
+// meant lists the gases whose formula or name a word may have been meant to be.
+func meant(word string) []string {
+	gas := map[string]string{}
+	var words []string
+	for _, s := range table {
+		for _, w := range []string{s.formula, s.name} {
+			gas[w] = fmt.Sprintf("%q (%s)", s.formula, s.name)
+			words = append(words, w)
+		}
 	}
-	return len(w) >= 3 && strings.HasPrefix(s.name, w)
+	var out []string
+	for _, w := range near.Names(word, words) {
+		out = append(out, gas[w])
+	}
+	return out
 }
 
 // describe names a mixture by its shares, the largest first.
