@@ -50,7 +50,10 @@ func nearest(symbol string, allowed []Dimension) []string {
 
 // describe names dimensions with their usual units: "pressure (Pa, kPa, bar)".
 func describe(ds []Dimension) string {
-	const most = 8
+	most := 8
+	if len(ds) > 1 {
+		most = 4
+	}
 	var parts []string
 	for _, d := range ds {
 		var symbols []string
