@@ -87,6 +87,7 @@ func TestBrokerLetsEachDoItsPart(t *testing.T) {
 		t.Errorf("the agent reads %q", got)
 	}
 	must(t, "mosquitto_pub", b.agent("-r", "-t", "heatreeve/availability", "-m", "online")...)
+	_, _ = output(t, "mosquitto_pub", b.plant("-r", "-t", "heatreeve/availability", "-m", "forged")...) // goes nowhere
 	if got := must(t, "mosquitto_sub", b.plant("-t", "heatreeve/availability", "-C", "1", "-W", "20")...); got != "online\n" {
 		t.Errorf("the plant reads the availability %q", got)
 	}
@@ -105,7 +106,6 @@ func TestBrokerDropsWhatIsNotAllowed(t *testing.T) {
 		publish     []string
 	}{
 		{"the agent writes to the plant", "creamery/hw/TT-202", b.agent("-m", "999")},
-		{"the plant writes outside its topics", "dairy/hw/TT-202", b.plant("-m", "999")},
 		{"a message over the size limit", "creamery/hw/TT-203", b.plant("-f", large)},
 	} {
 		// Refused or dropped: what the publisher is told differs between versions and does not matter here.

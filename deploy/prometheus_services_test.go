@@ -54,6 +54,10 @@ func TestCasesHoldTheRules(t *testing.T) {
 		{`< 0.9`, `< 0.91`},
 		{`> 3600`, `> 36`},
 		{`keep_firing_for: 10m`, `keep_firing_for: 1s`},
+		{`total[5m]) > 0`, `total[5m]) >= 0`},
+		{`total[5m]) > 0`, `total[30m]) > 0`},
+		{`for: 5m`, `for: 0s`},
+		{`for: 10m`, `for: 0s`},
 		{`for: 2m`, `for: 0s`},
 	} {
 		dir := writePrometheus(t, spoilt[0], spoilt[1])

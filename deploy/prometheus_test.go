@@ -16,6 +16,7 @@ import (
 // here. A scrape adds job and instance.
 var metrics = map[string][]string{
 	"heatreeve_broker_connected":              {},
+	"heatreeve_history_commit_failures_total": {},
 	"heatreeve_load_coverage_ratio":           {"load", "window"},
 	"heatreeve_load_duty_mean_watts":          {"load", "window"},
 	"heatreeve_load_expected_duty_watts":      {"load"},
@@ -106,7 +107,7 @@ func checkRules(t *testing.T, file string) {
 			}
 		}
 	}
-	want := []string{"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveCoverageLow", "HeatreeveDutyOffDesign", "HeatreeveLoadBlind", "HeatreeveTagNeverRead", "HeatreeveTagStale"}
+	want := []string{"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveCoverageLow", "HeatreeveDutyOffDesign", "HeatreeveHistoryFailing", "HeatreeveLoadBlind", "HeatreeveTagNeverRead", "HeatreeveTagStale"}
 	if got := slices.Sorted(maps.Keys(told)); !slices.Equal(got, want) {
 		t.Errorf("alerts %q; want %q", got, want)
 	}
