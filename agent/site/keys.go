@@ -1,0 +1,27 @@
+package site
+
+import "maps"
+
+// keys are the keys of each block. A star stands for a name that the file gives.
+var keys = map[string][]string{
+	"":                           {"site", "timezone", "barometer", "broker", "fluids", "tags", "loads", "timing", "history"},
+	"broker":                     {"url", "client_id", "ca", "certificate", "key", "server_name", "username", "password_file", "password_env"},
+	"timing":                     {"grid", "lateness", "ahead", "commit"},
+	"history":                    {"keep", "size"},
+	"tags.*":                     {"topic", "unit", "value", "time", "time_unit", "accuracy", "max_age", "range"},
+	"loads.*":                    {"stream", "design"},
+	"loads.*.stream":             {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes", "margin", "idle_below"},
+	"loads.*.design":             {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
+	"fluids.*.table":             {"source", "phase", "points", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range"},
+	"fluids.*.table.uncertainty": {"cp", "density"},
+}
+
+// Keys lists the keys that each block of a site file may have: "broker",
+// "tags.*", "loads.*.stream" and so on, "" for the top. A star stands for a name
+// that the file gives.
+func Keys() map[string][]string {
+	all := maps.Clone(keys)
+	all["fluids.*"] = fluidKeys()
+	all["fluids.*.gas"] = species()
+	return all
+}

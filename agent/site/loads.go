@@ -1,0 +1,142 @@
+package site
+
+import (
+	"time"
+
+	"go.yaml.in/yaml/v3"
+
+	"heatreeve/thermo"
+	"heatreeve/thermo/unit"
+)
+
+func (r *reader) readLoads(o object) {
+	v, ok := o.need("loads", "at least one load, such as hot-water: {stream: {...}}")
+	if !ok {
+		return
+	}
+	es := v.entries()
+	v.emptyMapping("at least one load")
+	for _, e := range es {
+		e.key.label(e.name)
+		r.site.Loads = append(r.site.Loads, r.load(e))
+	}
+}
+
+func (r *reader) load(e entry) HeatLoad {
+	o := e.object("loads.*")
+	l := HeatLoad{Name: e.name, Design: Design{Lasting: 10 * time.Minute}}
+	var stream, design object
+	if v, ok := o.need("stream", "the fluid with its flow, temperatures and pressure"); ok {
+		stream = v.object("loads.*.stream")
+		l.Stream = r.stream(stream)
+	}
+	if v, ok := o.get("design"); ok {
+		design = v.object("loads.*.design")
+		r.design(design, &l.Design)
+	}
+	r.checkDesignPoint(stream, design, l)
+	return l
+}
+
+func (r *reader) stream(o object) Stream {
+	s := Stream{Margin: 5}
+	if v, ok := o.need("fluid", "a declared fluid, or water, steam or dry air"); ok {
+		s.FluidName, s.Fluid = r.fluid(v)
+	}
+	s.Flow, s.FlowKind = r.needSource(o, "flow", "a tag or a constant such as 12 m3/h", flows...)
+	s.Inlet, _ = r.needSource(o, "inlet", "a tag or a constant such as 130 °C", unit.Temperature)
+	s.Outlet, _ = r.needSource(o, "outlet", "a tag or a constant such as 90 °C", unit.Temperature)
+	s.Pressure, _ = r.needSource(o, "pressure", "a tag, or a constant such as 3 barg may stand", unit.Pressure)
+	s.OutletPressure = s.Pressure
+	if v, ok := o.get("outlet_pressure"); ok {
+		s.OutletPressure, _ = r.source(v, unit.Pressure)
+	}
+	o.service(&s)
+	o.meter(&s)
+	if v, ok := o.get("margin"); ok {
+		s.Margin, _ = v.within(0, 100, "0 K to 100 K", unit.TemperatureDifference)
+	}
+	if v, ok := o.get("idle_below"); ok && s.FlowKind != 0 {
+		s.IdleBelow = notNegative(v, s.FlowKind)
+	}
+	o.checkStream(s)
+	return s
+}
+
+// service reads which way the load serves.
+func (o object) service(s *Stream) {
+	gives, isGiven := o.get("gives")
+	takes, isTaken := o.get("takes")
+	switch {
+	case isGiven && isTaken:
+		takes.fault("stands beside gives; a stream gives heat or takes it")
+	case isGiven:
+		gives.oneOf("heat")
+		s.Gives = true
+	case isTaken:
+		takes.oneOf("heat")
+	case o.node.Kind == yaml.MappingNode:
+		o.fault("wants gives: heat (a heating circuit) or takes: heat (a chilled circuit, a heated product)")
+	}
+}
+
+// meter reads where a volume flow is metered, which decides the density.
+func (o object) meter(s *Stream) {
+	if v, ok := o.get("meter_at"); ok {
+		at, _ := v.oneOf("inlet", "outlet")
+		s.MeterAtOutlet = at == "outlet"
+		return
+	}
+	if s.FlowKind == unit.VolumeFlow {
+		o.need("meter_at", "inlet or outlet: a volume flow becomes a mass flow with the density at the meter")
+	}
+}
+
+// checkStream looks at what does not go together.
+func (o object) checkStream(s Stream) {
+	if flow, ok := o.get("flow"); ok && s.FlowKind == unit.MolarFlow && s.Fluid != nil {
+		if s.Fluid.Phase() != thermo.Gas || s.Fluid.MolarMass() <= 0 {
+			flow.fault("a normal or standard volume flow is for gases, and %q is a %s", s.FluidName, s.Fluid.Phase())
+		}
+	}
+	if outlet, ok := o.get("outlet"); ok && !s.Outlet.Constant() && s.Inlet == s.Outlet {
+		outlet.fault("is the same tag as inlet, so there is no difference to measure")
+	}
+	if s.Flow.Value > 0 && s.Inlet.Value > 0 && s.Outlet.Value > 0 {
+		o.fault("nothing is measured: flow, inlet and outlet are all constants")
+	}
+}
+
+func notNegative(v value, d unit.Dimension) float64 {
+	q, ok := v.quantity(d)
+	if !ok {
+		return 0
+	}
+	if q.SI() < 0 {
+		v.fault("%v is below zero", q)
+		return 0
+	}
+	return q.SI()
+}
+
+// design reads the optional block.
+func (r *reader) design(o object, d *Design) {
+	if v, ok := o.get("duty"); ok {
+		d.Duty = r.constant(v, unit.Power)
+	}
+	if v, ok := o.get("allow"); ok {
+		d.Allow, _ = v.within(1e-6, 1, "more than 0 % up to 100 %", unit.Ratio)
+	}
+	o.needs("duty", "allow")
+	o.needs("allow", "duty")
+	o.setDuration("lasting", &d.Lasting, time.Second, day, "1 s to 1 d")
+	if v, ok := o.get("inlet"); ok {
+		d.Inlet = r.constant(v, unit.Temperature)
+	}
+	if v, ok := o.get("outlet"); ok {
+		d.Outlet = r.constant(v, unit.Temperature)
+	}
+	if v, ok := o.get("pressure"); ok {
+		d.Pressure = r.constant(v, unit.Pressure)
+	}
+}

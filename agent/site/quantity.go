@@ -1,0 +1,43 @@
+package site
+
+import (
+	"math"
+	"time"
+
+	"go.yaml.in/yaml/v3"
+
+	"heatreeve/thermo/unit"
+)
+
+// quantity reads a number with a unit of one of the dimensions.
+func (v value) quantity(allowed ...unit.Dimension) (unit.Quantity, bool) {
+	if v.node.Kind != yaml.ScalarNode || v.node.ShortTag() == "!!null" {
+		v.fault("want a number with a unit, found %s", v.kind())
+		return unit.Quantity{}, false
+	}
+	q, err := unit.ParseAs(v.node.Value, allowed...)
+	if err != nil {
+		v.fault("%v", err)
+		return unit.Quantity{}, false
+	}
+	return q, true
+}
+
+// within is quantity with limits in SI, both allowed; span tells them.
+func (v value) within(lo, hi float64, span string, d unit.Dimension) (float64, bool) {
+	q, ok := v.quantity(d)
+	if !ok {
+		return 0, false
+	}
+	if si := q.SI(); si < lo || si > hi {
+		v.fault("%v is out of range; allowed: %s", q, span)
+		return 0, false
+	}
+	return q.SI(), true
+}
+
+// duration is within for a time.
+func (v value) duration(lo, hi time.Duration, span string) (time.Duration, bool) {
+	s, ok := v.within(lo.Seconds(), hi.Seconds(), span, unit.Duration)
+	return time.Duration(math.Round(s * 1e9)), ok
+}

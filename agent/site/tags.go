@@ -1,0 +1,198 @@
+package site
+
+import (
+	"math"
+	"strings"
+	"time"
+	"unicode"
+
+	"heatreeve/thermo/unit"
+)
+
+// measured are the dimensions that a load can use.
+var measured = []unit.Dimension{unit.Temperature, unit.Pressure, unit.MassFlow, unit.VolumeFlow, unit.MolarFlow}
+
+// readTags reads every tag, and gives a tag at fault its place too, so that loads
+// that name it are not reported as well.
+func (r *reader) readTags(o object) {
+	v, ok := o.need("tags", "at least one tag, such as TT-1: {topic: plant/TT-1, unit: °C, accuracy: IEC 60751 A}")
+	if !ok {
+		return
+	}
+	es := v.entries()
+	if len(es) == 0 && v.node.Kind != 0 {
+		v.emptyMapping("at least one tag")
+	}
+	r.tags = make(map[string]int, len(es))
+	sources := make(map[[2]string]string, len(es))
+	for _, e := range es {
+		if e.key.label(e.name) {
+			e.key.noQuantity(e.name)
+		}
+		t := r.tag(e)
+		r.tags[e.name] = len(r.site.Tags)
+		r.site.Tags = append(r.site.Tags, t)
+		source := [2]string{t.Topic, t.Value}
+		if other, twice := sources[source]; twice && t.Topic != "" {
+			e.fault("reads the same value of the same topic as tag %q", other)
+			continue
+		}
+		sources[source] = e.name
+	}
+}
+
+// noQuantity refuses a tag's name that a load would read as a constant.
+func (v value) noQuantity(name string) {
+	if q, err := unit.Parse(name); err == nil {
+		v.fault("the name %q reads as the quantity %v; choose another", name, q)
+	}
+}
+
+func (r *reader) tag(e entry) Tag {
+	o := e.object("tags.*")
+	t := Tag{Name: e.name, MaxAge: time.Minute, Min: math.Inf(-1), Max: math.Inf(1), QoS: 1}
+	if v, ok := o.need("topic", "the MQTT topic of the tag"); ok {
+		t.Topic = topic(v)
+	}
+	u, ok := o.need("unit", "the unit of the numbers in the payload, such as °C, m3/h, barg")
+	known := ok && r.tagUnit(u, &t)
+	if v, ok := o.need("accuracy", accuracyForms); ok && known {
+		t.Accuracy = r.accuracy(v, t.Unit, t.Offset)
+	}
+	if v, ok := o.get("range"); ok && known {
+		if lo, hi, ok := r.span(v, t.Unit); ok {
+			t.Min, t.Max = lo, hi
+		}
+	}
+	o.setDuration("max_age", &t.MaxAge, time.Second, 7*day, "1 s to 7 d")
+	if t.MaxAge < r.site.Timing.Grid {
+		e.fault("max_age %v is shorter than the grid of %v", t.MaxAge, r.site.Timing.Grid)
+	}
+	o.payload(&t)
+	return t
+}
+
+// tagUnit reads the unit and how it leads to SI.
+func (r *reader) tagUnit(v value, t *Tag) bool {
+	s, ok := v.text()
+	if !ok {
+		return false
+	}
+	u, err := unit.LookupAs(s, measured...)
+	if err != nil {
+		v.fault("%v", err)
+		return false
+	}
+	t.Unit, t.Scale, t.Offset = u, u.Factor, u.Offset
+	if u.Gauge {
+		t.Offset = r.site.Barometer
+	}
+	return true
+}
+
+// payload reads where in a message the value and its time stand.
+func (o object) payload(t *Tag) {
+	t.Value, t.Time = o.pointer("value"), o.pointer("time")
+	at, timed := o.get("time")
+	if _, ok := o.get("value"); timed && !ok {
+		at.fault("stands without value; a payload with a time is JSON, so tell where the value is, such as value: /v")
+	}
+	if timed && t.Time != "" && t.Time == t.Value {
+		at.fault("is the same place as value")
+	}
+	v, ok := o.get("time_unit")
+	if !ok {
+		return
+	}
+	if !timed {
+		v.fault("stands without time; give time as well, such as time: /ts")
+	}
+	t.TimeFormat, _ = v.oneOf("s", "ms", "us", "rfc3339")
+}
+
+// pointer reads a JSON Pointer as RFC 6901 writes it.
+func (o object) pointer(key string) string {
+	v, ok := o.get(key)
+	if !ok {
+		return ""
+	}
+	s, ok := v.text()
+	if !ok {
+		return ""
+	}
+	bare := strings.NewReplacer("~0", "", "~1", "").Replace(s)
+	switch {
+	case !strings.HasPrefix(s, "/"):
+		v.fault("%q is no JSON Pointer; it begins with a slash, such as /v or /data/value", clip(s))
+	case strings.Contains(bare, "~"):
+		v.fault("%q is no JSON Pointer: write ~0 for ~ and ~1 for / within a name", clip(s))
+	default:
+		return s
+	}
+	return ""
+}
+
+// topic checks what MQTT 3.1.1 (OASIS 2014, 4.7) lets a message be published to.
+func topic(v value) string {
+	s, ok := v.text()
+	switch {
+	case !ok:
+	case strings.ContainsAny(s, "+#"):
+		v.fault("topic %q has a wildcard; a tag reads one topic, without + and #", clip(s))
+	case strings.HasPrefix(s, "$"):
+		v.fault("topic %q begins with $, which is the broker's own", clip(s))
+	case len(s) > 65535:
+		v.fault("the topic is %d bytes long; MQTT allows 65535", len(s))
+	case strings.ContainsFunc(s, unicode.IsControl):
+		v.fault("topic %q has a control character", clip(s))
+	default:
+		return s
+	}
+	return ""
+}
+
+var kelvin = unit.Unit{Symbol: "K", Dimension: unit.Temperature, Factor: 1}
+
+// span reads a list of two quantities, low and high, in the dimension of u. A
+// pressure is gauge where u is, or 0 bar might mean either.
+func (r *reader) span(v value, u unit.Unit) (lo, hi float64, ok bool) {
+	vs := v.items()
+	if len(vs) != 2 {
+		if vs != nil {
+			v.fault("want two quantities, low and high, found %d", len(vs))
+		}
+		return 0, 0, false
+	}
+	var ends [2]float64
+	for i, end := range vs {
+		q, ok := end.quantity(u.Dimension)
+		if ok && q.Unit.Gauge != u.Gauge {
+			end.fault("%v and the tag's unit %v are not both gauge or both absolute", q, u)
+			ok = false
+		}
+		if !ok {
+			return 0, 0, false
+		}
+		ends[i] = r.absolute(q)
+	}
+	if ends[0] >= ends[1] {
+		v.fault("the range is empty; want the low end first")
+		return 0, 0, false
+	}
+	return ends[0], ends[1], true
+}
+
+// absolute is the SI value with the barometer under a gauge pressure.
+func (r *reader) absolute(q unit.Quantity) float64 {
+	if q.Unit.Gauge {
+		return q.SI() + r.site.Barometer
+	}
+	return q.SI()
+}
+
+// emptyMapping adds the fault of a mapping without entries.
+func (v value) emptyMapping(want string) {
+	if len(v.node.Content) == 0 && v.kind() == "a mapping" {
+		v.fault("is empty; want %s", want)
+	}
+}
