@@ -6,37 +6,51 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// putCheckpoint stores the engine's state as it is after record seq.
-func putCheckpoint(tx *bolt.Tx, seq uint64, state []byte) error {
-	value := binary.LittleEndian.AppendUint64(nil, seq)
-	value = append(value, state...)
+// checkpoint is the engine's state, and the number of the last record that it
+// stands for. set is false until there is one; the value is there all the
+// same, so that a lost one is seen.
+type checkpoint struct {
+	set   bool
+	seq   uint64
+	state []byte
+}
+
+func putCheckpoint(tx *bolt.Tx, c checkpoint) error {
+	value := []byte{0}
+	if c.set {
+		value[0] = 1
+	}
+	value = binary.LittleEndian.AppendUint64(value, c.seq)
+	value = append(value, c.state...)
 	value = binary.LittleEndian.AppendUint32(value, checksum(keyCheckpoint, value))
 	return tx.Bucket(bucketState).Put(keyCheckpoint, value)
 }
 
-// readCheckpoint returns a copy of the state and the number of the last record
-// that it stands for.
-func readCheckpoint(tx *bolt.Tx) (seq uint64, state []byte, ok bool, err error) {
+// checkpoint reads what putCheckpoint wrote. The state is a copy.
+func (s *Store) checkpoint(tx *bolt.Tx) (checkpoint, error) {
 	v := tx.Bucket(bucketState).Get(keyCheckpoint)
-	if v == nil {
-		return 0, nil, false, nil
-	}
 	n := len(v) - 4
-	if n < 8 || binary.LittleEndian.Uint32(v[n:]) != checksum(keyCheckpoint, v[:n]) {
-		return 0, nil, false, errRecord
+	if n < 9 || v[0] > 1 || binary.LittleEndian.Uint32(v[n:]) != checksum(keyCheckpoint, v[:n]) {
+		return checkpoint{}, s.damage("engine state", keyCheckpoint, errRecord)
 	}
-	return binary.LittleEndian.Uint64(v), append([]byte{}, v[8:n]...), true, nil
+	return checkpoint{v[0] == 1, binary.LittleEndian.Uint64(v[1:]), append([]byte{}, v[9:n]...)}, nil
+}
+
+// latest reads the checkpoint in a transaction of its own.
+func (s *Store) latest() (c checkpoint, err error) {
+	err = s.view(func(tx *bolt.Tx) (err error) {
+		c, err = s.checkpoint(tx)
+		return err
+	})
+	return c, err
 }
 
 // Checkpoint returns the state that the last batch with a Checkpoint brought. ok
 // is false when there was none. The beats since then come from [Store.Since].
 func (s *Store) Checkpoint() (state []byte, ok bool, err error) {
-	err = s.view(func(tx *bolt.Tx) error {
-		_, state, ok, err = readCheckpoint(tx)
-		if err != nil {
-			return s.damage("engine state", keyCheckpoint, err)
-		}
-		return nil
-	})
-	return state, ok, err
+	c, err := s.latest()
+	if err != nil || !c.set {
+		return nil, false, err
+	}
+	return c.state, true, nil
 }

@@ -8,20 +8,25 @@
 //
 // The file holds these buckets. Integers in keys are big-endian, so that keys
 // sort as numbers do; a signed time has its sign bit flipped for the same
-// reason. Integers in values are little-endian. uvarint is the base-128 form of
-// encoding/binary, and zigzag maps 0, -1, 1, -2 to 0, 1, 2, 3. Every checksum is
-// CRC-32C over the record's key followed by the bytes before the checksum.
+// reason. Integers and float64 in values are little-endian. uvarint is the
+// base-128 form of encoding/binary, and zigzag maps 0, -1, 1, -2 to 0, 1, 2, 3. Every
+// checksum, written CRC, is a uint32: CRC-32C over the key followed by the bytes
+// of the value before the checksum. The keys "all" and "checkpoint" are there from the
+// beginning.
 //
 //	meta       "version"  uint32: 1
 //	           "created"  int64: Unix nanoseconds at creation
-//	names      kind 00 name -> uint32 id, big-endian
+//	names      "all" -> for each name: uint32 id, uvarint length and bytes of its
+//	           kind, the same of the name; CRC
 //	journal    a bucket for each closed group, by its name; in it "r" -> records
 //	recent     a bucket for each part of the open group, by the uint64 sequence
 //	           of its first record; in it "r" -> records
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
 //	minutes    int64 start, uint32 load -> a minute record
-//	registers  uint32 load -> 4 float64 (given, taken, measured, missing), CRC
-//	state      "checkpoint" -> uint64 sequence, opaque bytes, CRC
+//	registers  "all" -> for each load, by number: uint32 load and 4 float64
+//	           (given, taken, measured, missing); CRC
+//	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
+//	           record it stands for, the engine's bytes, CRC
 //
 // names, minutes and state also hold an empty bucket named 00.
 //
@@ -63,7 +68,7 @@
 // value under this name:
 //
 //	uint64 first sequence, big-endian; uint64 last sequence, int64 earliest,
-//	int64 latest, uint32 readings, CRC
+//	int64 latest, uint32 readings, CRC of these
 //
 // Earliest and latest bound the times of all beats and readings in the group,
 // and readings is how many there are. The names are the only index by time:

@@ -8,8 +8,8 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// groupBytes is how much a group holds before it is closed.
-const groupBytes = 48 << 10
+// defaultGroup is how many bytes of records a group holds before it is closed.
+const defaultGroup = 48 << 10
 
 // nameBytes is the length of a closed group's name.
 const nameBytes = 40
@@ -98,7 +98,7 @@ func newOpenGroup(first uint64) *openGroup {
 }
 
 // add writes beats as the next record.
-func (g *openGroup) add(tx *bolt.Tx, beats []Beat, pieceBytes int) error {
+func (g *openGroup) add(tx *bolt.Tx, beats []Beat, pieceBytes, groupBytes int) error {
 	g.tail = appendRecord(g.tail, g.last+1, beats, g.memory)
 	g.span.add(beats)
 	switch {

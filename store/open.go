@@ -10,6 +10,7 @@ import (
 	"path/filepath"
 	"runtime/debug"
 	"strconv"
+	"strings"
 	"time"
 
 	bolt "go.etcd.io/bbolt"
@@ -44,7 +45,7 @@ const (
 	// takes 583 bytes: 583 + 3·(P/4 − 192) + P/4 − 16 = P − 9.
 	pieceMargin = 192
 
-	fileMode     = 0o600
+	fileMode = 0o600
 )
 
 const advice = "; stop the agent, move the file aside and restore a backup, or start without it for a new history"
@@ -64,7 +65,7 @@ func open(path string, o Options) (*Store, error) {
 	if err := create(path); err != nil {
 		return nil, err
 	}
-	s := &Store{path: path, maxAge: o.MaxAge, maxBytes: o.MaxBytes}
+	s := &Store{path: path, maxAge: o.MaxAge, maxBytes: o.MaxBytes, groupBytes: defaultGroup}
 	if s.maxBytes <= 0 {
 		s.maxBytes = defaultBytes
 	}
@@ -147,7 +148,8 @@ func openError(err error) error {
 	switch {
 	case errors.Is(err, berrors.ErrTimeout):
 		return fmt.Errorf("%w (waited %v); is another agent running?", ErrLocked, lockWait)
-	case errors.Is(err, berrors.ErrInvalid), errors.Is(err, berrors.ErrChecksum), errors.Is(err, berrors.ErrVersionMismatch):
+	case errors.Is(err, berrors.ErrInvalid), errors.Is(err, berrors.ErrChecksum), errors.Is(err, berrors.ErrVersionMismatch),
+		strings.HasPrefix(err.Error(), "file size too small"): // bbolt has no name for this one
 		return fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
 	}
 	return err
@@ -187,7 +189,7 @@ func checkLayout(tx *bolt.Tx) error {
 	}
 	v := meta.Get(keyVersion)
 	if len(v) != 4 || binary.LittleEndian.Uint32(v) != Version {
-		return fmt.Errorf("%w: it has % x, this program reads %d; use the program that wrote it", ErrVersion, v, Version)
+		return fmt.Errorf("%w: it is %s, this program reads version %d; use the program that wrote it", ErrVersion, versionText(v), Version)
 	}
 	for _, name := range buckets() {
 		if tx.Bucket(name) == nil {
@@ -195,6 +197,13 @@ func checkLayout(tx *bolt.Tx) error {
 		}
 	}
 	return nil
+}
+
+func versionText(v []byte) string {
+	if len(v) != 4 {
+		return fmt.Sprintf("% x", v)
+	}
+	return fmt.Sprintf("version %d", binary.LittleEndian.Uint32(v))
 }
 
 func buckets() [][]byte {
@@ -243,6 +252,15 @@ func layOut(tx *bolt.Tx) error {
 		if _, err := tx.Bucket(name).CreateBucket(keyPlaceholder); err != nil {
 			return err
 		}
+	}
+	if err := tx.Bucket(bucketRegisters).Put(keyRegisters, appendRegisters(nil, nil)); err != nil {
+		return err
+	}
+	if err := tx.Bucket(bucketNames).Put(keyNames, appendNames(nil, nil)); err != nil {
+		return err
+	}
+	if err := putCheckpoint(tx, checkpoint{}); err != nil {
+		return err
 	}
 	meta := tx.Bucket(bucketMeta)
 	if err := meta.Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version)); err != nil {

@@ -110,6 +110,7 @@ func (c *pageCheck) elements(p *page, low, high []byte) error {
 
 func (c *pageCheck) leaf(p *page, count int64, low, high []byte) error {
 	var before []byte
+	next := pageHead + count*elementHead
 	for i := range count {
 		at := pageHead + i*elementHead
 		e, err := p.bytes(at, elementHead)
@@ -119,9 +120,10 @@ func (c *pageCheck) leaf(p *page, count int64, low, high []byte) error {
 		at += int64(binary.LittleEndian.Uint32(e[4:]))
 		keyLength := int64(binary.LittleEndian.Uint32(e[8:]))
 		valueLength := int64(binary.LittleEndian.Uint32(e[12:]))
-		if at+keyLength+valueLength > p.length {
-			return fmt.Errorf("value %d lies outside", i)
+		if at != next || at+keyLength+valueLength > p.length {
+			return fmt.Errorf("value %d is not in its place", i)
 		}
+		next = at + keyLength + valueLength
 		key, err := p.bytes(at, keyLength)
 		if err != nil {
 			return err
@@ -163,6 +165,7 @@ func (c *pageCheck) branch(p *page, count int64, low, high []byte) error {
 		return fmt.Errorf("branch without children")
 	}
 	keys, children := make([][]byte, count), make([]uint64, count)
+	next := pageHead + count*elementHead
 	for i := range count {
 		at := pageHead + i*elementHead
 		e, err := p.bytes(at, elementHead)
@@ -170,9 +173,13 @@ func (c *pageCheck) branch(p *page, count int64, low, high []byte) error {
 			return err
 		}
 		at += int64(binary.LittleEndian.Uint32(e))
+		if at != next {
+			return fmt.Errorf("key %d is not in its place", i)
+		}
 		if keys[i], err = p.bytes(at, int64(binary.LittleEndian.Uint32(e[4:]))); err != nil {
 			return err
 		}
+		next += int64(len(keys[i]))
 		children[i] = binary.LittleEndian.Uint64(e[8:])
 	}
 	for i, child := range children {

@@ -69,6 +69,11 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 			*after = binary.BigEndian.Uint64(k) - 1
 			return c, false, err
 		}
+		if *after > 0 && head.first > *after+1 {
+			err = s.damage("group", k, fmt.Errorf("records %d to %d are missing before it", *after+1, head.first-1))
+			*after = head.first - 1
+			return c, false, err
+		}
 		fresh := head.last > *after
 		*after = max(*after, head.last)
 		if fresh && want(head) {
@@ -160,12 +165,12 @@ func every(span) bool { return true }
 // to where it was.
 func (s *Store) Since() iter.Seq2[Beat, error] {
 	return func(yield func(Beat, error) bool) {
-		seq, _, err := s.mark()
+		c, err := s.latest()
 		if err != nil {
 			yield(Beat{}, err)
 			return
 		}
-		s.beats(seq, math.MaxUint64, every)(yield)
+		s.beats(c.seq, math.MaxUint64, every)(yield)
 	}
 }
 
@@ -174,16 +179,16 @@ func (s *Store) Since() iter.Seq2[Beat, error] {
 // them. With them the caller knows again what the broker delivers a second time.
 func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 	return func(yield func(Beat, error) bool) {
-		seq, ok, err := s.mark()
+		c, err := s.latest()
 		if err != nil {
 			yield(Beat{}, err)
 			return
 		}
-		if !ok || seq == 0 {
+		if c.seq == 0 {
 			return
 		}
 		var newest int64
-		for b, err := range s.beats(seq-1, seq, every) {
+		for b, err := range s.beats(c.seq-1, c.seq, every) {
 			if err != nil {
 				yield(Beat{}, err)
 				return
@@ -191,29 +196,17 @@ func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 			newest = b.Through
 		}
 		from := newest - int64(d)
-		start, err := s.groupBefore(seq, from)
+		start, err := s.groupBefore(c.seq, from)
 		if err != nil {
 			yield(Beat{}, err)
 			return
 		}
-		for b, err := range s.beats(start, seq, every) {
+		for b, err := range s.beats(start, c.seq, every) {
 			if (err != nil || b.Through >= from) && !yield(b, err) {
 				return
 			}
 		}
 	}
-}
-
-// mark returns the number of the last record that the checkpoint stands for.
-func (s *Store) mark() (seq uint64, ok bool, err error) {
-	err = s.view(func(tx *bolt.Tx) error {
-		seq, _, ok, err = readCheckpoint(tx)
-		if err != nil {
-			return s.damage("engine state", keyCheckpoint, err)
-		}
-		return nil
-	})
-	return seq, ok, err
 }
 
 // groupBefore goes back from the group of record seq until one holds nothing at
@@ -292,16 +285,19 @@ func (s *Store) minutesFrom(key, end []byte, load uint32) (found []foundMinute, 
 	err = s.view(func(tx *bolt.Tx) error {
 		c := tx.Bucket(bucketMinutes).Cursor()
 		k, v := c.Seek(key)
+		if string(k) == string(keyPlaceholder) {
+			k, v = c.Next()
+		}
 		for range minutesAView {
 			if k == nil || string(k) >= string(end) {
 				return nil
 			}
-			if len(k) == 12 && binary.BigEndian.Uint32(k[8:]) == load {
-				m, err := parseMinute(k, v)
-				if err != nil {
-					err = s.damage("minute", k, err)
-				}
-				found = append(found, foundMinute{m, err})
+			// Those of other loads are read as well, for a damaged key may hide one
+			// of this load.
+			if m, err := parseMinute(k, v); err != nil {
+				found = append(found, foundMinute{err: s.damage("minute", k, err)})
+			} else if m.Load == load {
+				found = append(found, foundMinute{minute: m})
 			}
 			k, v = c.Next()
 		}

@@ -2,49 +2,74 @@ package store
 
 import (
 	"encoding/binary"
+	"fmt"
 	"math"
+	"sort"
 
 	bolt "go.etcd.io/bbolt"
 )
+
+// registerBytes is what each load takes in the value that holds all registers.
+const registerBytes = 36
 
 func (r *Register) floats() [4]*float64 {
 	return [4]*float64{&r.Given, &r.Taken, &r.Measured, &r.Missing}
 }
 
-func loadKey(load uint32) []byte { return binary.BigEndian.AppendUint32(nil, load) }
-
-func registerValue(r Register) []byte {
-	var b []byte
-	for _, f := range r.floats() {
-		b = binary.LittleEndian.AppendUint64(b, math.Float64bits(*f))
+// appendRegisters writes all registers as one value, so that none can be missing
+// unnoticed.
+func appendRegisters(b []byte, all []Register) []byte {
+	for _, r := range all {
+		b = binary.LittleEndian.AppendUint32(b, r.Load)
+		for _, f := range r.floats() {
+			b = binary.LittleEndian.AppendUint64(b, math.Float64bits(*f))
+		}
 	}
-	return binary.LittleEndian.AppendUint32(b, checksum(loadKey(r.Load), b))
+	return binary.LittleEndian.AppendUint32(b, checksum(keyRegisters, b))
 }
 
-func parseRegister(key, value []byte) (Register, error) {
-	if len(key) != 4 || len(value) != 36 ||
-		binary.LittleEndian.Uint32(value[32:]) != checksum(key, value[:32]) {
-		return Register{}, errRecord
+func parseRegisters(value []byte) ([]Register, error) {
+	n := len(value) - 4
+	if n < 0 || n%registerBytes != 0 ||
+		binary.LittleEndian.Uint32(value[n:]) != checksum(keyRegisters, value[:n]) {
+		return nil, errRecord
 	}
-	r := Register{Load: binary.BigEndian.Uint32(key)}
-	for i, f := range r.floats() {
-		*f = math.Float64frombits(binary.LittleEndian.Uint64(value[8*i:]))
+	all := make([]Register, n/registerBytes)
+	for i := range all {
+		b := value[i*registerBytes:]
+		all[i].Load = binary.LittleEndian.Uint32(b)
+		for j, f := range all[i].floats() {
+			*f = math.Float64frombits(binary.LittleEndian.Uint64(b[4+8*j:]))
+		}
 	}
-	return r, nil
+	return all, nil
+}
+
+// putRegisters replaces the registers of the loads in changed.
+func putRegisters(tx *bolt.Tx, changed []Register) error {
+	bucket := tx.Bucket(bucketRegisters)
+	all, err := parseRegisters(bucket.Get(keyRegisters))
+	if err != nil {
+		return fmt.Errorf("%w: registers: %w", ErrDamaged, err)
+	}
+	for _, r := range changed {
+		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= r.Load })
+		if i == len(all) || all[i].Load != r.Load {
+			all = append(all[:i], append([]Register{{}}, all[i:]...)...)
+		}
+		all[i] = r
+	}
+	return bucket.Put(keyRegisters, appendRegisters(nil, all))
 }
 
 // Registers returns the register of every load that ever had one, by load.
 func (s *Store) Registers() ([]Register, error) {
 	var all []Register
-	err := s.view(func(tx *bolt.Tx) error {
-		return tx.Bucket(bucketRegisters).ForEach(func(k, v []byte) error {
-			r, err := parseRegister(k, v)
-			if err != nil {
-				return s.damage("register", k, err)
-			}
-			all = append(all, r)
-			return nil
-		})
+	err := s.view(func(tx *bolt.Tx) (err error) {
+		if all, err = parseRegisters(tx.Bucket(bucketRegisters).Get(keyRegisters)); err != nil {
+			return s.damage("registers", keyRegisters, err)
+		}
+		return nil
 	})
 	return all, err
 }

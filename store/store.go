@@ -1,7 +1,6 @@
 package store
 
 import (
-	"encoding/binary"
 	"errors"
 	"fmt"
 	"log/slog"
@@ -27,6 +26,8 @@ var (
 	keyVersion    = []byte("version")
 	keyCreated    = []byte("created")
 	keyRecords    = []byte("r")
+	keyNames      = []byte("all")
+	keyRegisters  = []byte("all")
 	keyCheckpoint = []byte("checkpoint")
 
 	// keyPlaceholder names an empty bucket inside those that must have a page of
@@ -62,16 +63,18 @@ type Options struct {
 // Store is an open history. One goroutine at a time writes; any number may read
 // meanwhile.
 type Store struct {
-	db       *bolt.DB
-	path     string
-	maxAge   time.Duration
-	maxBytes int64
-	piece    int // bytes that one tail bucket may hold
+	db         *bolt.DB
+	path       string
+	maxAge     time.Duration
+	maxBytes   int64
+	piece      int // bytes that one tail bucket may hold
+	groupBytes int // size at which a group is closed
 
-	used atomic.Int64
+	used atomic.Int64 // bytes of the pages in use
 
-	mu     sync.Mutex // guards open and closed, and is held while writing
+	mu     sync.Mutex // held while writing; guards what follows
 	open   *openGroup // nil: to be read from the file before the next record
+	full   bool       // the last commit found no room
 	closed bool
 }
 
@@ -91,6 +94,7 @@ func (s *Store) Commit(b Batch) error {
 		}
 		return s.write(tx, b, open)
 	})
+	s.full = IsFull(err)
 	if err != nil {
 		return fmt.Errorf("commit to history %q: %w", s.path, err)
 	}
@@ -100,9 +104,8 @@ func (s *Store) Commit(b Batch) error {
 
 func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 	if len(b.Beats) > 0 {
-		last := open.last
-		if err := open.add(tx, b.Beats, s.piece); err != nil {
-			return fmt.Errorf("record %d: %w", last+1, err)
+		if err := open.add(tx, b.Beats, s.piece, s.groupBytes); err != nil {
+			return fmt.Errorf("beats: %w", err)
 		}
 	}
 	if len(b.Minutes) > 0 {
@@ -114,13 +117,13 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 			}
 		}
 	}
-	for _, r := range b.Registers {
-		if err := tx.Bucket(bucketRegisters).Put(loadKey(r.Load), registerValue(r)); err != nil {
-			return fmt.Errorf("register of load %d: %w", r.Load, err)
+	if len(b.Registers) > 0 {
+		if err := putRegisters(tx, b.Registers); err != nil {
+			return fmt.Errorf("registers: %w", err)
 		}
 	}
 	if b.Checkpoint != nil {
-		return putCheckpoint(tx, open.last, b.Checkpoint)
+		return putCheckpoint(tx, checkpoint{true, open.last, b.Checkpoint})
 	}
 	return nil
 }
@@ -171,66 +174,4 @@ func (s *Store) Close() error {
 	}
 	s.closed = true
 	return s.db.Close()
-}
-
-// ID returns the number that stands for name among those of kind ("tag",
-// "load"), giving it the next free one if it has none yet.
-func (s *Store) ID(kind, name string) (uint32, error) {
-	ids, err := s.IDs(kind, []string{name})
-	if err != nil {
-		return 0, err
-	}
-	return ids[0], nil
-}
-
-// IDs is ID for many names in one transaction. When all are known it writes
-// nothing.
-func (s *Store) IDs(kind string, names []string) ([]uint32, error) {
-	ids := make([]uint32, len(names))
-	known := true
-	err := s.view(func(tx *bolt.Tx) error {
-		for i, name := range names {
-			v := tx.Bucket(bucketNames).Get(nameKey(kind, name))
-			if len(v) != 4 {
-				known = false
-				return nil
-			}
-			ids[i] = binary.BigEndian.Uint32(v)
-		}
-		return nil
-	})
-	if err != nil || known {
-		return ids, err
-	}
-	s.mu.Lock()
-	defer s.mu.Unlock()
-	err = s.update(func(tx *bolt.Tx) error {
-		for i, name := range names {
-			if ids[i], err = nameID(tx.Bucket(bucketNames), kind, name); err != nil {
-				return fmt.Errorf("%s %q: %w", kind, name, err)
-			}
-		}
-		return nil
-	})
-	if err != nil {
-		return nil, fmt.Errorf("number the names in history %q: %w", s.path, err)
-	}
-	return ids, nil
-}
-
-func nameKey(kind, name string) []byte { return []byte(kind + "\x00" + name) }
-
-func nameID(names *bolt.Bucket, kind, name string) (uint32, error) {
-	if kind == "" || strings.Contains(kind, "\x00") {
-		return 0, fmt.Errorf("kind %q is empty or holds a zero byte", kind)
-	}
-	key := nameKey(kind, name)
-	if v := names.Get(key); len(v) == 4 {
-		return binary.BigEndian.Uint32(v), nil
-	}
-	next, err := names.NextSequence()
-	if err != nil {
-		return 0, err
-	}
-	return uint32(next), names.Put(key, binary.BigEndian.AppendUint32(nil, uint32(next)))
 }

@@ -76,24 +76,13 @@ func plant(from int64, seconds, tags int) []Beat {
 	return beats
 }
 
-func collect(t testing.TB, s *Store, seq func(func(Beat, error) bool)) (all []Beat) {
-	t.Helper()
-	for b, err := range seq {
-		if err != nil {
-			t.Fatal(err)
-		}
-		all = append(all, b)
-	}
-	return all
-}
-
 // TestResume commits batches, some with a checkpoint, and finds after each
 // reopening the state and exactly the beats since.
 func TestResume(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "history.db")
 	var since, before []Beat
 	var state string
-	at := int64(1_760_000_000) * second
+	at := int64(1_760_000_000 * second)
 	for round := range 400 {
 		s, err := Open(path, Options{})
 		if err != nil {
@@ -103,7 +92,7 @@ func TestResume(t *testing.T) {
 		if err != nil || string(got) != state || ok != (state != "") {
 			t.Fatalf("round %d: Checkpoint() = %q, %v, %v; want %q", round, got, ok, err, state)
 		}
-		if got := collect(t, s, s.Since()); !reflect.DeepEqual(got, since) {
+		if got := drain(t, s.Since()); !reflect.DeepEqual(got, since) {
 			t.Fatalf("round %d: %d beats since the checkpoint, want %d", round, len(got), len(since))
 		}
 		for range 1 + round%7 {
@@ -136,7 +125,7 @@ func testBefore(t *testing.T, s *Store, all []Beat) {
 				want = append(want, b)
 			}
 		}
-		if got := collect(t, s, s.Before(time.Duration(d))); !reflect.DeepEqual(got, want) {
+		if got := drain(t, s.Before(time.Duration(d))); !reflect.DeepEqual(got, want) {
 			t.Errorf("Before(%d s): %d beats, want %d", d/second, len(got), len(want))
 		}
 	}

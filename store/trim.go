@@ -1,6 +1,7 @@
 package store
 
 import (
+	"bytes"
 	"encoding/binary"
 	"fmt"
 	"math"
@@ -19,17 +20,24 @@ const (
 
 	// perKey is what bbolt adds to each key and value in a page.
 	perKey = 16
+
+	// reliefShare is the share of what is in use, and reliefBytes the least, that
+	// Trim removes after a Commit that found no room.
+	reliefShare = 16
+	reliefBytes = 256 << 10
 )
 
-// Trimmed says what retention has removed.
-type Trimmed struct{ Readings, Minutes int64 }
+// Trimmed says what retention has removed. Damaged counts groups whose name could
+// not be read, so that it is not known what was in them.
+type Trimmed struct{ Readings, Minutes, Damaged int64 }
 
 // Trim removes readings and minutes older than MaxAge before now (event time,
 // Unix nanoseconds), and, while more than MaxBytes are in use, the oldest
 // readings and after those the oldest minutes. Beats after the last checkpoint are
 // never removed, for a restart needs them, nor is any register. Readings go a
 // group at a time, and the group that still grows stays: up to 48 KiB of them
-// may be kept longer than MaxAge.
+// may be kept longer than MaxAge. After a Commit that found no room, Trim makes
+// some, however much MaxBytes allows.
 func (s *Store) Trim(now int64) (Trimmed, error) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
@@ -37,16 +45,21 @@ func (s *Store) Trim(now int64) (Trimmed, error) {
 	s.db.MaxSize += trimRoom
 	defer func() { s.db.MaxSize = limit }()
 
+	bound := s.maxBytes
+	if s.full {
+		used := s.used.Load()
+		bound = min(bound, used-max(used/reliefShare, reliefBytes))
+	}
 	old := int64(math.MinInt64)
 	if s.maxAge > 0 {
 		old = now - int64(s.maxAge)
 	}
 	var t Trimmed
-	for _, remove := range []func(*bolt.Tx, int64, *Trimmed) (bool, error){s.trimGroups, s.trimMinutes} {
+	for _, remove := range []remover{s.trimGroups, s.trimMinutes} {
 		for more := true; more; {
 			done := t
 			err := s.update(func(tx *bolt.Tx) (err error) {
-				more, err = remove(tx, old, &done)
+				more, err = remove(tx, old, s.used.Load()-bound, &done)
 				return err
 			})
 			if err != nil {
@@ -55,46 +68,47 @@ func (s *Store) Trim(now int64) (Trimmed, error) {
 			t = done
 		}
 	}
+	s.full = false
 	return t, nil
 }
 
-// excess is how many bytes are in use beyond the bound.
-func (s *Store) excess() int64 { return s.used.Load() - s.maxBytes }
+// remover removes some of what is older than old, or what is oldest while excess
+// bytes are too many. more tells that it is to be called again, after the pages that
+// became free have been counted.
+type remover func(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error)
 
-// trimGroups removes some groups from the front of the journal. more tells that
-// there may be others to remove.
-func (s *Store) trimGroups(tx *bolt.Tx, old int64, t *Trimmed) (more bool, err error) {
-	mark, _, _, err := readCheckpoint(tx)
-	if err != nil {
-		return false, s.damage("engine state", keyCheckpoint, err)
-	}
-	journal := tx.Bucket(bucketJournal)
-	names, err := s.doomed(journal, mark, old)
+// trimGroups removes groups from the front of the journal.
+func (s *Store) trimGroups(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
+	mark, err := s.checkpoint(tx)
 	if err != nil {
 		return false, err
 	}
+	journal := tx.Bucket(bucketJournal)
+	names := s.doomed(journal, mark.seq, old, excess)
 	for _, name := range names {
 		if err := journal.DeleteBucket(name); err != nil {
 			return false, err
 		}
-		head, err := parseName(name)
-		if err != nil {
-			return false, err
+		if head, err := parseName(name); err == nil {
+			t.Readings += int64(head.readings)
+		} else {
+			t.Damaged++
 		}
-		t.Readings += int64(head.readings)
 	}
-	return len(names) == groupsATrim, nil
+	return len(names) > 0, nil
 }
 
-// doomed returns the names of the groups to remove, oldest first.
-func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old int64) (names [][]byte, err error) {
+// doomed returns the names of the groups to remove, oldest first. A group with a
+// damaged name goes with the next one after it.
+func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old, excess int64) (names [][]byte) {
 	page := int64(s.db.Info().PageSize)
-	excess := s.excess()
+	var damaged [][]byte
 	c := journal.Cursor()
 	for k, _ := c.First(); k != nil && len(names) < groupsATrim; k, _ = c.Next() {
 		head, err := parseName(k)
 		if err != nil {
-			return nil, s.damage("group", k, err)
+			damaged = append(damaged, bytes.Clone(k))
+			continue
 		}
 		if head.last >= mark || head.latest >= old && excess <= 0 {
 			break
@@ -104,15 +118,18 @@ func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old int64) (names [][]
 			size = len(own.Get(keyRecords))
 		}
 		excess -= (int64(size) + page) / page * page
-		names = append(names, append([]byte{}, k...))
+		names = append(append(names, damaged...), bytes.Clone(k))
+		damaged = nil
 	}
-	return names, nil
+	return names
 }
 
-// trimMinutes does with the minutes as trimGroups does with the journal.
-func (s *Store) trimMinutes(tx *bolt.Tx, old int64, t *Trimmed) (more bool, err error) {
-	excess := s.excess()
+// trimMinutes removes minutes from the front.
+func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
 	over := excess > 0
+	if over {
+		excess += int64(s.db.Info().PageSize) // room comes by whole pages
+	}
 	c := tx.Bucket(bucketMinutes).Cursor()
 	k, v := c.Seek(keyFirstMinute)
 	for range minutesATrim {

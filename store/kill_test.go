@@ -1,0 +1,180 @@
+package store
+
+import (
+	"bufio"
+	"encoding/binary"
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strconv"
+	"testing"
+)
+
+// childPath names the variable that makes the test binary commit until killed.
+const childPath = "HEATREEVE_STORE_CHILD"
+
+func TestMain(m *testing.M) {
+	if path := os.Getenv(childPath); path != "" {
+		fmt.Fprintln(os.Stderr, commitForEver(path))
+		os.Exit(1)
+	}
+	os.Exit(m.Run())
+}
+
+// numbered is the batch with number n: one beat that reads n, a minute and the
+// register of all numbers up to n, and with each seventh the number as state.
+func numbered(n uint64) Batch {
+	at := int64(n) * second
+	b := Batch{
+		Beats:     []Beat{{Through: at, Readings: []Reading{{Tag: 1, At: at, Value: float64(n)}}}},
+		Minutes:   []Minute{{Load: 1, Start: at, Duty: float64(n)}},
+		Registers: []Register{{Load: 1, Given: float64(n * (n + 1) / 2)}},
+	}
+	for tag := range uint32(n % 50) { // to make the batches differ in size
+		b.Beats[0].Readings = append(b.Beats[0].Readings, Reading{Tag: 2 + tag, At: at, Value: math.Sqrt(float64(n))})
+	}
+	if n%7 == 0 {
+		b.Checkpoint = binary.LittleEndian.AppendUint64(nil, n)
+	}
+	return b
+}
+
+// commitForEver goes on where the history ends, and tells each number once its commit
+// has returned.
+func commitForEver(path string) error {
+	s, err := Open(path, Options{})
+	if err != nil {
+		return err
+	}
+	s.groupBytes = 4000
+	n, err := lastNumber(s)
+	if err != nil {
+		return err
+	}
+	for n++; ; n++ {
+		if err := s.Commit(numbered(n)); err != nil {
+			return err
+		}
+		fmt.Println(n)
+		if n%500 == 0 {
+			if _, err := s.Trim(int64(n) * second); err != nil {
+				return err
+			}
+		}
+	}
+}
+
+// lastNumber reads state and journal as an engine does after a restart.
+func lastNumber(s *Store) (n uint64, err error) {
+	state, ok, err := s.Checkpoint()
+	if err != nil {
+		return 0, err
+	}
+	if ok {
+		n = binary.LittleEndian.Uint64(state)
+	}
+	for b, err := range s.Since() {
+		if err != nil {
+			return 0, err
+		}
+		if got := b.Readings[0].Value; got != float64(n+1) {
+			return 0, fmt.Errorf("beat %v follows number %d", got, n)
+		}
+		n++
+	}
+	return n, nil
+}
+
+// TestKill kills a process while it commits, twenty times. Each time the file holds
+// every batch that the process had been told was committed, each of them whole.
+func TestKill(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "history.db")
+	rng := rand.New(rand.NewPCG(7, 7))
+	var last uint64
+	for round := range 20 {
+		acknowledged := killedAfter(t, path, 1+rng.IntN(60))
+		s, err := Open(path, Options{})
+		if err != nil {
+			t.Fatalf("round %d: %v", round, err)
+		}
+		n, err := lastNumber(s)
+		if err != nil || n < acknowledged || n <= last {
+			t.Fatalf("round %d: the history ends with %d, %v; %d was acknowledged, %d the round before", round, n, err, acknowledged, last)
+		}
+		last = n
+		testNumbered(t, s, n)
+		if err := s.Close(); err != nil {
+			t.Fatal(err)
+		}
+		boltCheck(t, path)
+	}
+}
+
+// killedAfter starts the child, kills it after some acknowledgements, and
+// returns the last one that it gave.
+func killedAfter(t *testing.T, path string, acks int) (last uint64) {
+	t.Helper()
+	cmd := exec.Command(os.Args[0])
+	cmd.Env = append(os.Environ(), childPath+"="+path)
+	cmd.Stderr = os.Stderr
+	out, err := cmd.StdoutPipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := cmd.Start(); err != nil {
+		t.Fatal(err)
+	}
+	lines := bufio.NewScanner(out)
+	for lines.Scan() {
+		if last, err = strconv.ParseUint(lines.Text(), 10, 64); err != nil {
+			t.Error(err)
+		}
+		if acks--; acks == 0 {
+			if err := cmd.Process.Kill(); err != nil {
+				t.Error(err)
+			}
+		}
+	}
+	if acks > 0 {
+		t.Errorf("the child ended by itself, %d acknowledgements too early", acks)
+	}
+	if err := cmd.Wait(); err == nil {
+		t.Error("the child was not killed")
+	}
+	return last
+}
+
+// testNumbered compares everything in s with the numbers 1 to n.
+func testNumbered(t *testing.T, s *Store, n uint64) {
+	t.Helper()
+	for _, b := range []struct {
+		what string
+		got  []float64
+	}{
+		{"readings", values(drain(t, s.Readings(1, 0, math.MaxInt64)), func(r Reading) float64 { return r.Value })},
+		{"minutes", values(drain(t, s.Minutes(1, 0, math.MaxInt64)), func(m Minute) float64 { return m.Duty })},
+	} {
+		if uint64(len(b.got)) != n {
+			t.Errorf("%d %s, want %d", len(b.got), b.what, n)
+		}
+		for i, v := range b.got {
+			if v != float64(i+1) {
+				t.Fatalf("%s: %v in place %d", b.what, v, i)
+			}
+		}
+	}
+	registers, err := s.Registers()
+	if want := float64(n * (n + 1) / 2); err != nil || len(registers) != 1 || registers[0].Given != want {
+		t.Errorf("Registers() = %v, %v; want one that is %v", registers, err, want)
+	}
+}
+
+func values[T any](all []T, f func(T) float64) (v []float64) {
+	for _, x := range all {
+		v = append(v, f(x))
+	}
+	return v
+}
