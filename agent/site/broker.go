@@ -104,7 +104,7 @@ func brokerURL(v value) (address string, tls bool) {
 	}
 	u, err := url.Parse(s)
 	switch {
-	case err != nil || u.Host == "" || (u.Scheme != "mqtt" && u.Scheme != "mqtts"):
+	case err != nil || u.Host == "" || !(strings.HasPrefix(s, "mqtt://") || strings.HasPrefix(s, "mqtts://")):
 		v.fault("%q is no address of a broker; allowed: mqtt://host:port, or mqtts://host:port for TLS", clip(s))
 		return "", false
 	case (u.Path != "" && u.Path != "/") || u.RawQuery != "" || u.Fragment != "":

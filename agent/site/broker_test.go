@@ -28,6 +28,7 @@ func TestBrokerURL(t *testing.T) {
 	}
 	for _, tt := range []struct{ url, say string }{
 		{"http://broker", "mqtts://host:port for TLS"},
+		{"MQTT://broker", "mqtts://host:port for TLS"},
 		{"broker:1883", "mqtt://host:port"},
 		{"127.0.0.1:1883", "mqtt://host:port"},
 		{"mqtt://", "mqtt://host:port"},
