@@ -1,0 +1,149 @@
+package configs_test
+
+import (
+	"bytes"
+	"io/fs"
+	"maps"
+	"slices"
+	"strings"
+	"testing"
+
+	"heatreeve/agent/site"
+	"heatreeve/configs"
+)
+
+func examples(t *testing.T) map[string][]byte {
+	t.Helper()
+	names, err := fs.Glob(configs.Files, "*.yaml")
+	if err != nil || len(names) < 2 {
+		t.Fatalf("examples: %q, %v; want two or more", names, err)
+	}
+	texts := make(map[string][]byte, len(names))
+	for _, name := range names {
+		if texts[name], err = fs.ReadFile(configs.Files, name); err != nil {
+			t.Fatal(err)
+		}
+	}
+	return texts
+}
+
+const safety = `# Heatreeve informs; it is no safety function, no alarm of record and no billing meter.
+# Site codes, the plant's own protection and licensed people come first.
+`
+
+func TestExamplesAreRead(t *testing.T) {
+	for name, text := range examples(t) {
+		s, err := site.Parse(name, text)
+		if err != nil {
+			t.Errorf("%v", err)
+			continue
+		}
+		if !bytes.HasPrefix(text, []byte("# yaml-language-server: $schema=site.schema.json\n#\n# "+s.Name+", an invented plant")) {
+			t.Errorf("%s: the head does not name the schema and the invented plant %q", name, s.Name)
+		}
+		if !strings.Contains(string(text), safety) {
+			t.Errorf("%s: the safety line is missing", name)
+		}
+		if err := validate(t, text); err != nil {
+			t.Errorf("%s: the schema refuses it: %v", name, err)
+		}
+	}
+}
+
+func TestDemo(t *testing.T) {
+	if !bytes.Equal(configs.Demo, examples(t)[configs.DemoName]) {
+		t.Errorf("Demo is not the text of %s", configs.DemoName)
+	}
+	s, err := site.Parse(configs.DemoName, configs.Demo)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var loads []string
+	for _, l := range s.Loads {
+		loads = append(loads, l.Name+" of "+l.Stream.FluidName)
+	}
+	if want := []string{"hot-water of water", "chilled-glycol of glycol", "dryer-air of dry air"}; !slices.Equal(loads, want) {
+		t.Errorf("the demo's loads are %q, want %q", loads, want)
+	}
+}
+
+// At the design point each example asks for a flow that its instrument can show
+// and that is not idle.
+func TestDesignPointsAreConsistent(t *testing.T) {
+	for name, text := range examples(t) {
+		s, err := site.Parse(name, text)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, l := range s.Loads {
+			st, d := l.Stream, l.Design
+			p := d.Pressure
+			if p == 0 {
+				p = st.Pressure.Value
+			}
+			in, errIn := st.Fluid.At(d.Inlet, p)
+			out, errOut := st.Fluid.At(d.Outlet, p)
+			if errIn != nil || errOut != nil {
+				t.Errorf("%s: %s: %v, %v", name, l.Name, errIn, errOut)
+				continue
+			}
+			heat := out.Enthalpy - in.Enthalpy
+			if st.Gives {
+				heat = -heat
+			}
+			flow := d.Duty / heat // kg/s
+			density := in.Density
+			if st.MeterAtOutlet {
+				density = out.Density
+			}
+			shown := map[string]float64{"mass flow": flow, "volume flow": flow / density, "normal or standard volume flow": flow / st.Fluid.MolarMass()}[st.FlowKind.String()]
+			if tag := s.Tags[st.Flow.Tag]; shown <= 2*st.IdleBelow || shown > tag.Max {
+				t.Errorf("%s: %s: design flow %.4g %v; idle below %.4g, instrument up to %.4g",
+					name, l.Name, tag.Unit.Of(shown), tag.Unit, tag.Unit.Of(st.IdleBelow), tag.Unit.Of(tag.Max))
+			}
+		}
+	}
+}
+
+// Every key that the reader knows stands in an example, but for those that rule
+// each other out or that only odd fluids need.
+func TestExamplesShowTheKeys(t *testing.T) {
+	apart := []string{
+		"broker.server_name", "broker.password_env", "fluids.*.ethylene glycol", "fluids.*.table.pressure",
+		"fluids.*.table.freezing", "fluids.*.table.range",
+	}
+	shown := make(map[string]bool)
+	for _, text := range examples(t) {
+		collect(shown, "", decode(t, text))
+	}
+	for block, keys := range site.Keys() {
+		for _, key := range keys {
+			path := strings.TrimPrefix(block+"."+key, ".")
+			if !shown[path] && !slices.Contains(apart, path) && !strings.HasPrefix(path, "fluids.*.gas.") {
+				t.Errorf("no example shows %s", path)
+			}
+		}
+	}
+}
+
+// collect notes the paths of all keys, with a star for the names that files give.
+func collect(shown map[string]bool, path string, v any) {
+	m, ok := v.(map[string]any)
+	if !ok {
+		return
+	}
+	for _, key := range slices.Sorted(maps.Keys(m)) {
+		below := strings.TrimPrefix(path+"."+key, ".")
+		shown[below] = true
+		switch below {
+		case "fluids", "tags", "loads":
+			if named, ok := m[key].(map[string]any); ok {
+				for _, v := range named {
+					collect(shown, below+".*", v)
+				}
+			}
+		default:
+			collect(shown, below, m[key])
+		}
+	}
+}

@@ -1,0 +1,105 @@
+package configs_test
+
+import (
+	"fmt"
+	"slices"
+	"testing"
+
+	"go.yaml.in/yaml/v3"
+)
+
+// mutant is an example with one change.
+type mutant struct {
+	what string
+	text []byte
+}
+
+// values are put in the place of every value, one by one.
+var values = []yaml.Node{
+	{Kind: yaml.ScalarNode, Tag: "!!int", Value: "7"},
+	{Kind: yaml.ScalarNode, Tag: "!!bool", Value: "true"},
+	{Kind: yaml.ScalarNode, Tag: "!!null", Value: "null"},
+	{Kind: yaml.ScalarNode, Tag: "!!str", Value: ""},
+	{Kind: yaml.ScalarNode, Tag: "!!str", Value: "odd +#$ text"},
+	{Kind: yaml.ScalarNode, Tag: "!!str", Value: " 7 K"},
+	{Kind: yaml.MappingNode},
+	{Kind: yaml.SequenceNode},
+}
+
+// mutants changes a file in every place: a value replaced, a key left out, an
+// unknown one or a neighbour's added.
+func mutants(t *testing.T, text []byte) []mutant {
+	t.Helper()
+	var doc yaml.Node
+	if err := yaml.Unmarshal(text, &doc); err != nil {
+		t.Fatal(err)
+	}
+	bare(&doc)
+	var ms []mutant
+	write := func(format string, args ...any) {
+		out, err := yaml.Marshal(&doc)
+		if err != nil {
+			t.Fatal(err)
+		}
+		ms = append(ms, mutant{fmt.Sprintf(format, args...), out})
+	}
+	change(doc.Content[0], "", write)
+	return ms
+}
+
+// bare drops the comments: what is written anew has other places for them.
+func bare(n *yaml.Node) {
+	n.HeadComment, n.LineComment, n.FootComment = "", "", ""
+	for _, c := range n.Content {
+		bare(c)
+	}
+}
+
+// change applies every change to n and below, calls write for each, and takes it
+// back.
+func change(n *yaml.Node, path string, write func(format string, args ...any)) {
+	original := *n
+	for _, v := range values {
+		*n = v
+		write("%s is %q (%s)", path, v.Value, v.Tag)
+	}
+	*n = original
+	switch n.Kind {
+	case yaml.MappingNode:
+		changeKeys(n, path, write)
+		for i := 0; i+1 < len(n.Content); i += 2 {
+			change(n.Content[i+1], path+"."+n.Content[i].Value, write)
+		}
+	case yaml.SequenceNode:
+		content := n.Content
+		for i := range content {
+			n.Content = slices.Delete(slices.Clone(content), i, i+1)
+			write("%s is without item %d", path, i)
+		}
+		n.Content = content
+		for i, item := range content {
+			change(item, fmt.Sprintf("%s[%d]", path, i), write)
+		}
+	}
+}
+
+// added are keys that one block or another has, and one that none has.
+var added = []string{
+	"colour", "time_unit", "range", "password_env", "key", "takes", "gives", "meter_at", "allow", "uncertainty", "table", "propylene glycol",
+}
+
+func changeKeys(n *yaml.Node, path string, write func(format string, args ...any)) {
+	content := n.Content
+	for i := 0; i+1 < len(content); i += 2 {
+		n.Content = slices.Delete(slices.Clone(content), i, i+2)
+		write("%s is without %s", path, content[i].Value)
+	}
+	for _, key := range added {
+		if slices.ContainsFunc(content, func(k *yaml.Node) bool { return k.Value == key }) {
+			continue
+		}
+		n.Content = append(slices.Clone(content), &yaml.Node{Kind: yaml.ScalarNode, Value: key}, &yaml.Node{Kind: yaml.ScalarNode, Value: "heat"})
+		write("%s has %s besides", path, key)
+	}
+	n.Content = content
+}

@@ -1,0 +1,162 @@
+package configs_test
+
+import (
+	"bytes"
+	"errors"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+	"sync"
+	"testing"
+
+	"github.com/santhosh-tekuri/jsonschema/v6"
+	"go.yaml.in/yaml/v3"
+
+	"heatreeve/agent/site"
+	"heatreeve/configs"
+)
+
+var compiled = sync.OnceValues(func() (*jsonschema.Schema, error) {
+	doc, err := jsonschema.UnmarshalJSON(bytes.NewReader(configs.Schema))
+	if err != nil {
+		return nil, err
+	}
+	c := jsonschema.NewCompiler()
+	if err := c.AddResource("site.schema.json", doc); err != nil {
+		return nil, err
+	}
+	return c.Compile("site.schema.json")
+})
+
+// validate holds a site file to the schema.
+func validate(t *testing.T, text []byte) error {
+	t.Helper()
+	schema, err := compiled()
+	if err != nil {
+		t.Fatal(err)
+	}
+	return schema.Validate(decode(t, text))
+}
+
+func decode(t *testing.T, text []byte) any {
+	t.Helper()
+	var v any
+	if err := yaml.Unmarshal(text, &v); err != nil {
+		t.Fatalf("%v in\n%s", err, text)
+	}
+	return v
+}
+
+// The keys of the schema and those of the reader are the same, block by block,
+// and each has words for the editor to show.
+func TestSchemaHasTheReadersKeys(t *testing.T) {
+	schema, err := compiled()
+	if err != nil {
+		t.Fatal(err)
+	}
+	got := make(map[string][]string)
+	walk(t, got, "", schema)
+	want := site.Keys()
+	for block, keys := range want {
+		slices.Sort(keys)
+		slices.Sort(got[block])
+		if !slices.Equal(got[block], keys) {
+			t.Errorf("%q: the schema has %q, the reader %q", block, got[block], keys)
+		}
+	}
+	if len(got) != len(want) {
+		t.Errorf("the schema has %d blocks, the reader %d", len(got), len(want))
+	}
+}
+
+func walk(t *testing.T, got map[string][]string, path string, s *jsonschema.Schema) {
+	described := s.Description != ""
+	for s.Ref != nil {
+		s = s.Ref
+		described = described || s.Description != ""
+	}
+	if !described && !strings.HasSuffix(path, "*") {
+		t.Errorf("%q has no description", path)
+	}
+	if named, ok := s.AdditionalProperties.(*jsonschema.Schema); ok {
+		walk(t, got, strings.TrimPrefix(path+".*", "."), named)
+		return
+	}
+	if s.Properties == nil {
+		return
+	}
+	if s.AdditionalProperties != false {
+		t.Errorf("%q takes any key", path)
+	}
+	for key, below := range s.Properties {
+		got[path] = append(got[path], key)
+		walk(t, got, strings.TrimPrefix(path+"."+key, "."), below)
+	}
+}
+
+// The examples are changed in one place at a time, in every place and many ways. What
+// the schema then refuses, the reader refuses as well.
+func TestReaderIsAsStrictAsTheSchema(t *testing.T) {
+	for name, text := range examples(t) {
+		t.Run(name, func(t *testing.T) {
+			t.Parallel()
+			refused := 0
+			for _, m := range mutants(t, text) {
+				if validate(t, m.text) == nil {
+					continue
+				}
+				refused++
+				if _, err := site.Parse(name, m.text); err == nil {
+					t.Errorf("the schema refuses what the reader takes: %s\n%v", m.what, validate(t, m.text))
+				}
+			}
+			if refused < 500 {
+				t.Errorf("the schema refuses %d changed files; too few to tell", refused)
+			}
+		})
+	}
+}
+
+// The wrong files of the reader's own tests are refused by both, where the
+// schema has a say: most faults are about units and ranges, and a doubled key
+// (loads.yaml) does not get as far as a schema.
+func TestWrongFiles(t *testing.T) {
+	paths, err := filepath.Glob("../agent/site/testdata/wrong/*.yaml")
+	if err != nil || len(paths) < 10 {
+		t.Fatalf("%d wrong files, %v", len(paths), err)
+	}
+	var refused []string
+	for _, path := range paths {
+		text, err := os.ReadFile(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var v any
+		if yaml.Unmarshal(text, &v) != nil {
+			continue
+		}
+		if err := validate(t, text); err != nil {
+			refused = append(refused, strings.TrimSuffix(filepath.Base(path), ".yaml"))
+		}
+		var faults site.Faults
+		if _, err := site.Load(path); !errors.As(err, &faults) {
+			t.Errorf("%s: the reader answers %v", path, err)
+		}
+	}
+	for _, name := range []string{"broker", "credentials", "fluids", "list", "tags"} {
+		if !slices.Contains(refused, name) {
+			t.Errorf("the schema takes %s.yaml", name)
+		}
+	}
+}
+
+func TestSchemaRefersToNothingElse(t *testing.T) {
+	if _, err := fs.Stat(configs.Files, "site.schema.json"); err == nil {
+		t.Error("the schema is among the example files")
+	}
+	if bytes.Contains(configs.Schema, []byte(`"$ref": "http`)) {
+		t.Error("the schema needs the network")
+	}
+}
