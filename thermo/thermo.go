@@ -6,9 +6,10 @@
 //
 //	Q = m · (h(T2, p2) − h(T1, p1))
 //
-// with h from the fluid's own formulation, never from a constant cp. Every
-// fluid knows its range and refuses outside it with a [*RangeError]; nothing is
-// clamped or extrapolated.
+// with h from the fluid's own formulation, never from a constant cp unless a
+// user's own table says so. A closed vessel takes up ΔU at constant volume, ΔH at
+// constant pressure. Every fluid knows its range and refuses outside it with a
+// [*RangeError]; nothing is clamped or extrapolated.
 package thermo
 
 import "fmt"

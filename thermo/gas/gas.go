@@ -41,11 +41,15 @@ type mixture struct {
 	lastDewPoint float64 // K, the highest dew point at any allowed pressure
 }
 
-func (m *mixture) Name() string                       { return m.name }
-func (m *mixture) Source() string                     { return "NASA/TP-2002-211556 (NASA-9 polynomials), ideal gas" }
-func (m *mixture) Phase() thermo.Phase                { return thermo.Gas }
-func (m *mixture) Bounds() thermo.Bounds              { return m.bounds }
-func (m *mixture) MolarMass() float64                 { return m.molarMass }
+func (m *mixture) Name() string          { return m.name }
+func (m *mixture) Source() string        { return "NASA/TP-2002-211556 (NASA-9 polynomials), ideal gas" }
+func (m *mixture) Phase() thermo.Phase   { return thermo.Gas }
+func (m *mixture) Bounds() thermo.Bounds { return m.bounds }
+func (m *mixture) MolarMass() float64    { return m.molarMass }
+
+// Uncertainty joins that of the polynomials with what the ideal gas may be off by,
+// anywhere up to the highest pressure allowed: 0.9 % in cp and 0.15 % in density
+// for dry air. An uncertain composition is not in it.
 func (m *mixture) Uncertainty() (cp, density float64) { return m.cpU, m.rhoU }
 
 // Span returns the temperature at which the first component condenses or

@@ -2,6 +2,7 @@ package gas
 
 import (
 	"encoding/csv"
+	"errors"
 	"math"
 	"os"
 	"strconv"
@@ -9,6 +10,7 @@ import (
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/fluidtest"
+	"heatreeve/thermo/water"
 )
 
 // flue gas of natural gas, as in the worked examples of package thermo.
@@ -158,5 +160,33 @@ func TestTrust(t *testing.T) {
 	}
 	if compared < 40 {
 		t.Errorf("compared %d states, want 40 or more", compared)
+	}
+}
+
+// Water vapour, which the table of real gases leaves out, against IAPWS-IF97.
+func TestTrustOfWaterVapour(t *testing.T) {
+	const T, p = 400, 1e5
+	real, err1 := water.Steam().At(T, p)
+	ideal, err2 := mustNew(t, map[string]float64{"H2O": 1}).At(T, p)
+	if err := errors.Join(err1, err2); err != nil {
+		t.Fatal(err)
+	}
+	k := trusts["H2O"]
+	if d := 1 - ideal.Cp/real.Cp; math.Abs(d-k.cp*p) > 0.001 {
+		t.Errorf("cp is %.4f low, table says %.4f", d, k.cp*p)
+	}
+	if d := 1 - ideal.Density/real.Density; math.Abs(d-k.density*p) > 0.001 {
+		t.Errorf("density is %.4f low, table says %.4f", d, k.density*p)
+	}
+}
+
+func TestEveryGasHasItsTrust(t *testing.T) {
+	for _, s := range Species() {
+		if k := trusts[s]; !(k.cp > 0 && k.density > 0 && k.fit > 0) {
+			t.Errorf("%s: %+v", s, k)
+		}
+	}
+	if len(trusts) != len(table) {
+		t.Errorf("%d gases, %d entries of trust", len(table), len(trusts))
 	}
 }
