@@ -8,6 +8,8 @@ import (
 	"strings"
 	"testing"
 
+	"go.yaml.in/yaml/v3"
+
 	"heatreeve/agent/site"
 	"heatreeve/configs"
 )
@@ -114,7 +116,11 @@ func TestExamplesShowTheKeys(t *testing.T) {
 	}
 	shown := make(map[string]bool)
 	for _, text := range examples(t) {
-		collect(shown, "", decode(t, text))
+		var doc yaml.Node
+		if err := yaml.Unmarshal(text, &doc); err != nil {
+			t.Fatal(err)
+		}
+		collect(shown, "", decode(t, &doc))
 	}
 	for block, keys := range site.Keys() {
 		for _, key := range keys {

@@ -8,16 +8,9 @@ import (
 	"go.yaml.in/yaml/v3"
 )
 
-// mutant is an example with one change.
-type mutant struct {
-	what string
-	text []byte
-}
-
 // values are put in the place of every value, one by one.
 var values = []yaml.Node{
 	{Kind: yaml.ScalarNode, Tag: "!!int", Value: "7"},
-	{Kind: yaml.ScalarNode, Tag: "!!bool", Value: "true"},
 	{Kind: yaml.ScalarNode, Tag: "!!null", Value: "null"},
 	{Kind: yaml.ScalarNode, Tag: "!!str", Value: ""},
 	{Kind: yaml.ScalarNode, Tag: "!!str", Value: "odd +#$ text"},
@@ -26,25 +19,19 @@ var values = []yaml.Node{
 	{Kind: yaml.SequenceNode},
 }
 
-// mutants changes a file in every place: a value replaced, a key left out, an
-// unknown one or a neighbour's added.
-func mutants(t *testing.T, text []byte) []mutant {
+// eachMutant changes a file in every place: a value replaced, a key left out, an
+// unknown one or a neighbour's added. visit gets the changed tree, which is only
+// good until it returns, and what the change is.
+func eachMutant(t *testing.T, text []byte, visit func(doc *yaml.Node, what string)) {
 	t.Helper()
 	var doc yaml.Node
 	if err := yaml.Unmarshal(text, &doc); err != nil {
 		t.Fatal(err)
 	}
 	bare(&doc)
-	var ms []mutant
-	write := func(format string, args ...any) {
-		out, err := yaml.Marshal(&doc)
-		if err != nil {
-			t.Fatal(err)
-		}
-		ms = append(ms, mutant{fmt.Sprintf(format, args...), out})
-	}
-	change(doc.Content[0], "", write)
-	return ms
+	change(doc.Content[0], "", func(format string, args ...any) {
+		visit(&doc, fmt.Sprintf(format, args...))
+	})
 }
 
 // bare drops the comments: what is written anew has other places for them.
@@ -67,8 +54,12 @@ func change(n *yaml.Node, path string, write func(format string, args ...any)) {
 	switch n.Kind {
 	case yaml.MappingNode:
 		changeKeys(n, path, write)
+		seen := make(map[string]bool)
 		for i := 0; i+1 < len(n.Content); i += 2 {
-			change(n.Content[i+1], path+"."+n.Content[i].Value, write)
+			if s := shape(n.Content[i+1]); s == "" || !seen[s] {
+				seen[s] = true
+				change(n.Content[i+1], path+"."+n.Content[i].Value, write)
+			}
 		}
 	case yaml.SequenceNode:
 		content := n.Content
@@ -81,6 +72,17 @@ func change(n *yaml.Node, path string, write func(format string, args ...any)) {
 			change(item, fmt.Sprintf("%s[%d]", path, i), write)
 		}
 	}
+}
+
+// shape is what a mapping's keys are. Of tags with the same keys, one is changed.
+func shape(n *yaml.Node) string {
+	var keys string
+	if n.Kind == yaml.MappingNode {
+		for i := 0; i < len(n.Content); i += 2 {
+			keys += n.Content[i].Value + "\n"
+		}
+	}
+	return keys
 }
 
 // added are keys that one block or another has, and one that none has.

@@ -3,6 +3,7 @@ package site
 import (
 	"maps"
 	"slices"
+	"sync"
 
 	"go.yaml.in/yaml/v3"
 
@@ -14,13 +15,13 @@ import (
 )
 
 // builtIn are the fluids that need no declaration.
-func builtIn() map[string]thermo.Fluid {
+var builtIn = sync.OnceValue(func() map[string]thermo.Fluid {
 	return map[string]thermo.Fluid{
 		"water":   water.Liquid(),
 		"steam":   water.Steam(),
 		"dry air": gas.DryAir(),
 	}
-}
+})
 
 func species() []string { return gas.Species() }
 
@@ -31,7 +32,7 @@ func fluidKeys() []string { return append(fluidKinds(), "uncertainty") }
 
 // readFluids reads the declared fluids, right or wrong, beside the built-in ones.
 func (r *reader) readFluids(o object) {
-	r.site.Fluids, r.fluids = builtIn(), builtIn()
+	r.site.Fluids, r.fluids = maps.Clone(builtIn()), maps.Clone(builtIn())
 	v, ok := o.get("fluids")
 	if !ok {
 		return
