@@ -5,6 +5,8 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"maps"
+	"slices"
 	"time"
 
 	"github.com/go-json-experiment/json/jsontext"
@@ -62,7 +64,7 @@ func NewDecoder(tags []Tag, ahead time.Duration) (*Decoder, error) {
 	if ahead <= 0 {
 		ahead = DefaultAhead
 	}
-	d := &Decoder{tags: tags, topics: make(map[string]*topic), ahead: ahead}
+	d := &Decoder{tags: slices.Clone(tags), topics: make(map[string]*topic), ahead: ahead}
 	var faults []error
 	for i, tag := range tags {
 		if err := tag.check(); err != nil {
@@ -90,6 +92,16 @@ func (d *Decoder) add(i int, tag Tag) {
 	}
 	t.qos = max(t.qos, tag.QoS)
 	t.tags = append(t.tags, wanted{tag: i, value: t.slot(tag.Value), time: t.slot(tag.Time)})
+}
+
+// sorted returns the topics by name.
+func (d *Decoder) sorted() []*topic {
+	names := slices.Sorted(maps.Keys(d.topics))
+	all := make([]*topic, len(names))
+	for i, name := range names {
+		all[i] = d.topics[name]
+	}
+	return all
 }
 
 // slot returns the slot for a pointer, shared by all tags that use it.

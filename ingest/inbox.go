@@ -1,0 +1,174 @@
+package ingest
+
+import (
+	"context"
+	"sync"
+	"time"
+)
+
+// Received is a reading on its way to the disk, with what is needed to
+// acknowledge its message.
+type Received struct {
+	Reading
+	from *message // nil: delivered at most once, there is nothing to acknowledge
+}
+
+// acknowledger is a message of the client library.
+type acknowledger interface{ Ack() }
+
+// message is one that the broker keeps until it is acknowledged.
+type message struct {
+	acknowledger
+	open int // readings not yet stored
+}
+
+// inbox holds readings until they are taken, and messages until they are
+// acknowledged: in the order of their arrival (MQTT 3.1.1, section 4.6), so a
+// refused message, which needs no storing, waits for the ones before it.
+type inbox struct {
+	limit    int
+	patience time.Duration // how long a message may wait for room
+
+	mu       sync.Mutex
+	readings []Received
+	unacked  []*message    // of this connection, by arrival
+	crowded  bool          // waiting was in vain; the next take clears it
+	left     bool          // a message stayed with the broker; a new connection clears it
+	room     chan struct{} // one slot: readings were taken
+
+	sending sync.Mutex // one acknowledger at a time, for the order
+}
+
+func newInbox(limit int, patience time.Duration) *inbox {
+	return &inbox{limit: limit, patience: patience, room: make(chan struct{}, 1)}
+}
+
+// reconnect begins a new connection. What was not acknowledged is delivered
+// again on it; acknowledging the copies from before would do nothing.
+func (b *inbox) reconnect() {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	b.unacked = nil
+	b.left = false
+}
+
+// put adds a message's readings, waiting a little for room. When it reports
+// false, the message must not be acknowledged; those that follow on the same
+// connection then stay with the broker too, so that order is kept. m is nil for
+// a message that cannot be acknowledged; if there is no room, it is lost.
+func (b *inbox) put(ctx context.Context, m acknowledger, readings []Outcome) bool {
+	if ok, wait := b.offer(m, readings); ok || !wait {
+		return ok
+	}
+	timer := time.NewTimer(b.patience)
+	defer timer.Stop()
+	for {
+		select {
+		case <-b.room:
+			if ok, wait := b.offer(m, readings); ok || !wait {
+				return ok
+			}
+		case <-ctx.Done():
+			return b.leave(m)
+		case <-timer.C:
+			return b.leave(m)
+		}
+	}
+}
+
+// offer adds the readings if there is room; else wait tells whether to try
+// again.
+func (b *inbox) offer(m acknowledger, outcomes []Outcome) (ok, wait bool) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	n := accepted(outcomes)
+	if (b.left && m != nil) || len(b.readings)+n > b.limit {
+		b.left = b.left || (b.crowded && m != nil)
+		return false, !b.left && !b.crowded
+	}
+	var from *message
+	if m != nil {
+		from = &message{acknowledger: m, open: n}
+		b.unacked = append(b.unacked, from)
+	}
+	for i := range outcomes {
+		if outcomes[i].Refusal == nil {
+			b.readings = append(b.readings, Received{Reading: outcomes[i].Reading, from: from})
+		}
+	}
+	return true, false
+}
+
+func accepted(outcomes []Outcome) int {
+	n := 0
+	for i := range outcomes {
+		if outcomes[i].Refusal == nil {
+			n++
+		}
+	}
+	return n
+}
+
+func (b *inbox) leave(m acknowledger) bool {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	b.crowded = true
+	b.left = b.left || m != nil
+	return false
+}
+
+// take appends the readings to buf. left says that the broker holds messages
+// that it will deliver only on a new connection.
+func (b *inbox) take(buf []Received) (_ []Received, left bool) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	buf = append(buf, b.readings...)
+	clear(b.readings)
+	b.readings = b.readings[:0]
+	b.crowded = false
+	select {
+	case b.room <- struct{}{}:
+	default:
+	}
+	return buf, b.left
+}
+
+// stored notes that readings are on disk.
+func (b *inbox) stored(batch []Received) {
+	b.mu.Lock()
+	for _, r := range batch {
+		if r.from != nil && r.from.open > 0 {
+			r.from.open--
+		}
+	}
+	b.mu.Unlock()
+	b.acknowledge()
+}
+
+// acknowledge sends what is due, from the oldest message on. The library's own
+// locks are never taken under mu.
+func (b *inbox) acknowledge() {
+	b.sending.Lock()
+	defer b.sending.Unlock()
+	for m := b.due(); m != nil; m = b.due() {
+		m.Ack()
+	}
+}
+
+func (b *inbox) due() *message {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	if len(b.unacked) == 0 || b.unacked[0].open > 0 {
+		return nil
+	}
+	m := b.unacked[0]
+	b.unacked[0] = nil
+	b.unacked = b.unacked[1:]
+	return m
+}
+
+func (b *inbox) waiting() int {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	return len(b.unacked)
+}

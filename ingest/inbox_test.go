@@ -1,0 +1,126 @@
+package ingest
+
+import (
+	"context"
+	"slices"
+	"testing"
+	"testing/synctest"
+	"time"
+)
+
+// acks notes acknowledgements in their order.
+type acks struct{ sent []int }
+
+type numbered struct {
+	to *acks
+	n  int
+}
+
+func (m numbered) Ack() { m.to.sent = append(m.to.sent, m.n) }
+
+// values are the outcomes of a message with n good readings and one refusal.
+func values(n int) []Outcome {
+	out := []Outcome{{Refusal: &Refusal{Reason: Empty}}}
+	for i := range n {
+		out = append(out, Outcome{Reading: Reading{Tag: i}})
+	}
+	return out
+}
+
+func put(t *testing.T, b *inbox, m acknowledger, n int) {
+	t.Helper()
+	if !b.put(t.Context(), m, values(n)) {
+		t.Fatalf("no room for message %v with %d readings", m, n)
+	}
+}
+
+func TestAcknowledgedOnceInOrder(t *testing.T) {
+	b, got := newInbox(100, time.Second), &acks{}
+	put(t, b, numbered{got, 1}, 2) // two readings
+	put(t, b, numbered{got, 2}, 0) // refused
+	put(t, b, nil, 1)              // cannot be acknowledged
+	put(t, b, numbered{got, 3}, 1)
+	b.acknowledge()
+	batch, _ := b.take(nil)
+	if len(batch) != 4 || b.waiting() != 3 || len(got.sent) != 0 {
+		t.Fatalf("%d readings, %d waiting, sent %v; want 4, 3, none", len(batch), b.waiting(), got.sent)
+	}
+	b.stored(batch[3:])
+	b.stored(batch[:1])
+	if len(got.sent) != 0 {
+		t.Fatalf("sent %v before the first message was stored whole", got.sent)
+	}
+	b.stored(batch[1:2])
+	b.stored(batch)
+	if !slices.Equal(got.sent, []int{1, 2, 3}) || b.waiting() != 0 {
+		t.Errorf("sent %v, %d waiting; want 1, 2, 3 once each and none", got.sent, b.waiting())
+	}
+}
+
+func TestReconnectionDropsAcknowledgements(t *testing.T) {
+	b, got := newInbox(100, time.Second), &acks{}
+	put(t, b, numbered{got, 1}, 1)
+	old, _ := b.take(nil)
+	b.reconnect()
+	put(t, b, numbered{got, 101}, 1) // the same again
+	b.stored(old)
+	if len(got.sent) != 0 || b.waiting() != 1 {
+		t.Errorf("sent %v, %d waiting after the old copy was stored; want none, 1", got.sent, b.waiting())
+	}
+	again, _ := b.take(nil)
+	b.stored(again)
+	if !slices.Equal(got.sent, []int{101}) {
+		t.Errorf("sent %v; want the copy received last", got.sent)
+	}
+}
+
+func TestFullInbox(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		b, got := newInbox(2, time.Second), &acks{}
+		put(t, b, numbered{got, 1}, 2)
+		begin := time.Now()
+		if b.put(t.Context(), numbered{got, 2}, values(1)) || time.Since(begin) != time.Second {
+			t.Fatalf("message 2 was let in, or gave up after %v; want refused after 1s", time.Since(begin))
+		}
+		if b.put(t.Context(), numbered{got, 3}, values(1)) || time.Since(begin) != time.Second {
+			t.Fatal("message 3 was let in or waited; want refused at once")
+		}
+		batch, left := b.take(nil)
+		if !left || len(batch) != 2 {
+			t.Fatalf("took %d, left %v; want 2 and messages left with the broker", len(batch), left)
+		}
+		if b.put(t.Context(), numbered{got, 4}, values(1)) {
+			t.Fatal("message 4 overtook those left with the broker")
+		}
+		put(t, b, nil, 1) // has no broker to come from again
+		b.reconnect()
+		put(t, b, numbered{got, 2}, 1)
+		if _, left := b.take(nil); left {
+			t.Error("still left after the new connection")
+		}
+	})
+}
+
+func TestRoomIsWaitedFor(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		b, got := newInbox(2, time.Second), &acks{}
+		put(t, b, numbered{got, 1}, 2)
+		done := make(chan bool)
+		go func() { done <- b.put(t.Context(), numbered{got, 2}, values(2)) }()
+		synctest.Wait()
+		b.take(nil)
+		if !<-done {
+			t.Error("refused although room was made")
+		}
+		ctx, cancel := context.WithCancel(t.Context())
+		go func() { done <- b.put(ctx, numbered{got, 3}, values(2)) }()
+		synctest.Wait()
+		cancel()
+		if <-done {
+			t.Error("let in although full and cancelled")
+		}
+		if batch, left := b.take(nil); len(batch) != 2 || !left {
+			t.Errorf("took %d, left %v; want 2, true", len(batch), left)
+		}
+	})
+}

@@ -1,0 +1,188 @@
+package ingest
+
+import (
+	"crypto/tls"
+	"errors"
+	"fmt"
+	"log/slog"
+	"net"
+	"net/url"
+	"strconv"
+	"time"
+)
+
+// Defaults of [Options].
+const (
+	DefaultBuffer         = 65536
+	DefaultMaxBackoff     = 30 * time.Second
+	DefaultKeepAlive      = 15 * time.Second
+	DefaultPingTimeout    = 5 * time.Second
+	DefaultConnectTimeout = 10 * time.Second
+)
+
+// Options of a [Session]. URL and ClientID must be given.
+type Options struct {
+	// URL is mqtt://host:port, or mqtts://host:port for TLS. Without a port
+	// 1883 and 8883 are taken.
+	URL string
+	// ClientID names the session at the broker. It must stay the same from
+	// start to start, and no other client may use it.
+	ClientID string
+
+	Username string
+	// Password is asked at every attempt to connect, so that it may change;
+	// nil: none.
+	Password func() (string, error)
+
+	// CAFile holds the certificates (PEM) that the broker's must be signed by;
+	// "": those of the system. All files are read at every attempt.
+	CAFile string
+	// CertFile and KeyFile (PEM) are this client's certificate; both or none.
+	CertFile, KeyFile string
+	// ServerName is the name that the broker's certificate must carry; "": the
+	// host of the URL.
+	ServerName string
+
+	Ahead  time.Duration // see [NewDecoder]
+	Buffer int           // readings held until taken; 0: DefaultBuffer
+
+	MaxBackoff     time.Duration // longest pause between two attempts; 0: DefaultMaxBackoff
+	KeepAlive      time.Duration // silence before the broker is probed, whole seconds; 0: DefaultKeepAlive
+	PingTimeout    time.Duration // wait for the probe's answer; 0: DefaultPingTimeout
+	ConnectTimeout time.Duration // for an attempt, and for any write; 0: DefaultConnectTimeout
+
+	Log *slog.Logger     // nil: silent
+	Now func() time.Time // the arrival clock; nil: time.Now
+}
+
+// withDefaults fills in what was left out and returns every fault, joined.
+func (o Options) withDefaults() (Options, error) {
+	o.Buffer = orDefault(o.Buffer, DefaultBuffer)
+	o.MaxBackoff = orDefault(o.MaxBackoff, DefaultMaxBackoff)
+	o.KeepAlive = orDefault(o.KeepAlive, DefaultKeepAlive)
+	o.PingTimeout = orDefault(o.PingTimeout, DefaultPingTimeout)
+	o.ConnectTimeout = orDefault(o.ConnectTimeout, DefaultConnectTimeout)
+	if o.Log == nil {
+		o.Log = slog.New(slog.DiscardHandler)
+	}
+	if o.Now == nil {
+		o.Now = time.Now
+	}
+	var faults []error
+	b, err := parseBroker(o.URL)
+	if err != nil {
+		faults = append(faults, err)
+	}
+	if o.ClientID == "" {
+		faults = append(faults, errors.New("the client id is empty; give one that stays the same, such as the site's name"))
+	}
+	if o.Password != nil && o.Username == "" {
+		faults = append(faults, errors.New("a password without a user name"))
+	}
+	if o.Buffer < 0 || o.MaxBackoff < 0 || o.PingTimeout < 0 || o.ConnectTimeout < 0 {
+		faults = append(faults, errors.New("buffer and times must not be negative"))
+	}
+	if o.KeepAlive < time.Second || o.KeepAlive > 65535*time.Second {
+		faults = append(faults, fmt.Errorf("keep-alive %v; allowed are 1 s to 65535 s", o.KeepAlive))
+	}
+	files := o.CAFile != "" || o.CertFile != "" || o.KeyFile != "" || o.ServerName != ""
+	if err == nil && files && !b.tls {
+		faults = append(faults, fmt.Errorf("certificates are given, but %s is not encrypted; use mqtts://", b))
+	}
+	if _, err := o.tlsConfig(b.host); err != nil {
+		faults = append(faults, err)
+	}
+	return o, errors.Join(faults...)
+}
+
+func orDefault[T int | time.Duration](given, normal T) T {
+	if given == 0 {
+		return normal
+	}
+	return given
+}
+
+// broker is the address of one, checked.
+type broker struct {
+	host, port string
+	tls        bool
+}
+
+func (b broker) String() string {
+	scheme := "mqtt://"
+	if b.tls {
+		scheme = "mqtts://"
+	}
+	return scheme + b.address()
+}
+
+func (b broker) address() string { return net.JoinHostPort(b.host, b.port) }
+
+// parseBroker never repeats what it could not read: it may hold a password.
+func parseBroker(raw string) (broker, error) {
+	u, err := url.Parse(raw)
+	if err != nil {
+		var inner *url.Error
+		if errors.As(err, &inner) {
+			err = inner.Err
+		}
+		return broker{}, fmt.Errorf("broker address: %w; write mqtt://host:port or mqtts://host:port", err)
+	}
+	b := broker{host: u.Hostname(), port: u.Port()}
+	switch u.Scheme {
+	case "mqtt":
+		b.port = orPort(b.port, "1883")
+	case "mqtts":
+		b.port = orPort(b.port, "8883")
+		b.tls = true
+	default:
+		return broker{}, fmt.Errorf("broker address: scheme %q; allowed are mqtt:// and, with TLS, mqtts://", u.Scheme)
+	}
+	if u.User != nil {
+		return broker{}, errors.New("broker address: user name and password do not belong in it, where logs would show them; give them apart")
+	}
+	if b.host == "" {
+		return broker{}, fmt.Errorf("broker address %q: the host is missing", raw)
+	}
+	if n, err := strconv.ParseUint(b.port, 10, 16); err != nil || n == 0 {
+		return broker{}, fmt.Errorf("broker address %q: port %q; allowed are 1 to 65535", raw, b.port)
+	}
+	if (u.Path != "" && u.Path != "/") || u.RawQuery != "" || u.Fragment != "" {
+		return broker{}, fmt.Errorf("broker address %q: nothing may follow the port", raw)
+	}
+	return b, nil
+}
+
+func orPort(given, normal string) string {
+	if given == "" {
+		return normal
+	}
+	return given
+}
+
+// tlsConfig reads the certificate files.
+func (o Options) tlsConfig(host string) (*tls.Config, error) {
+	c := &tls.Config{MinVersion: tls.VersionTLS12, ServerName: o.ServerName}
+	if c.ServerName == "" {
+		c.ServerName = host
+	}
+	if o.CAFile != "" {
+		pool, err := readPool(o.CAFile)
+		if err != nil {
+			return nil, err
+		}
+		c.RootCAs = pool
+	}
+	if o.CertFile == "" && o.KeyFile == "" {
+		return c, nil
+	}
+	if o.CertFile == "" || o.KeyFile == "" {
+		return nil, errors.New("client certificate: its file and its key file must both be given, or neither")
+	}
+	pair, err := tls.LoadX509KeyPair(o.CertFile, o.KeyFile)
+	if err != nil {
+		return nil, fmt.Errorf("client certificate %q with key %q: %w", o.CertFile, o.KeyFile, err)
+	}
+	c.Certificates = []tls.Certificate{pair}
+	return c, nil
+}

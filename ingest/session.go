@@ -1,0 +1,200 @@
+package ingest
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"net"
+	"net/url"
+	"sync/atomic"
+	"time"
+
+	mqtt "github.com/eclipse/paho.mqtt.golang"
+)
+
+// Session keeps one persistent MQTT session and the readings it delivers.
+//
+// One goroutine calls Run; Take, Ack, Waiting and Stats may be called from any.
+type Session struct {
+	tags    []Tag
+	o       Options
+	broker  broker
+	decoder *Decoder
+	topics  []*topic // by name
+	inbox   *inbox
+	tally   *tally
+
+	running atomic.Bool
+	client  atomic.Pointer[mqtt.Client]
+	link    atomic.Pointer[link]
+	dialErr atomic.Pointer[error] // of the attempt under way: the library does not hand it on whole
+
+	outcomes []Outcome // of the message at hand
+	short    shortLives
+}
+
+// New checks tags and options and prepares a session; nothing is sent before
+// [Session.Run]. The error names every fault.
+func New(tags []Tag, o Options) (*Session, error) {
+	o, wrong := o.withDefaults()
+	decoder, wrongTags := NewDecoder(tags, o.Ahead)
+	if err := errors.Join(wrong, wrongTags); err != nil {
+		return nil, err
+	}
+	b, err := parseBroker(o.URL)
+	if err != nil {
+		return nil, err
+	}
+	s := &Session{
+		tags: tags, o: o, broker: b, decoder: decoder, topics: decoder.sorted(),
+		inbox: newInbox(o.Buffer, patience(o.PingTimeout)), tally: newTally(len(tags)),
+	}
+	for _, t := range s.topics {
+		if len(t.tags) > o.Buffer {
+			return nil, fmt.Errorf("buffer of %d readings: topic %q feeds %d tags with one message", o.Buffer, t.name, len(t.tags))
+		}
+	}
+	return s, nil
+}
+
+// patience is how long a message may hold up the connection: less than the
+// broker's answer to a probe may take, for it comes behind the message.
+func patience(pingTimeout time.Duration) time.Duration { return pingTimeout * 3 / 5 }
+
+// Run connects, and reconnects, until ctx ends; then it tells the broker
+// goodbye, after the acknowledgements given so far, and returns nil. To stop
+// without repeats: stop taking, store, [Session.Ack], then end ctx. Run may be
+// called once.
+//
+// If ctx ends while there is no connection, a goroutine of the client library
+// remains until its pause between two attempts is over.
+func (s *Session) Run(ctx context.Context) error {
+	if s.running.Swap(true) {
+		return errors.New("the session was run before; make a new one")
+	}
+	client := mqtt.NewClient(s.clientOptions(ctx))
+	s.client.Store(&client)
+	client.Connect()
+	<-ctx.Done()
+	if l := s.link.Load(); l != nil {
+		l.parting.Store(true)
+	}
+	client.Disconnect(500) // ms
+	return nil
+}
+
+func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
+	o := mqtt.NewClientOptions().AddBroker("tcp://" + s.broker.address()).SetProtocolVersion(4)
+	o.SetClientID(s.o.ClientID).SetCleanSession(false).SetAutoAckDisabled(true).SetOrderMatters(true)
+	o.SetKeepAlive(s.o.KeepAlive).SetPingTimeout(s.o.PingTimeout).SetConnectTimeout(s.o.ConnectTimeout)
+	o.SetAutoReconnect(true).SetMaxReconnectInterval(s.o.MaxBackoff)
+	o.SetConnectRetry(true).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
+	o.SetCredentialsProvider(s.credentials)
+	o.SetCustomOpenConnectionFn(func(*url.URL, mqtt.ClientOptions) (net.Conn, error) { return s.open(ctx) })
+	o.SetDefaultPublishHandler(func(_ mqtt.Client, m mqtt.Message) { s.receive(ctx, m) })
+	o.SetOnConnectHandler(func(c mqtt.Client) { s.connected(ctx, c) })
+	o.SetConnectionLostHandler(func(_ mqtt.Client, err error) { s.lost(err) })
+	o.SetConnectionNotificationHandler(func(_ mqtt.Client, n mqtt.ConnectionNotification) {
+		if failed, ok := n.(mqtt.ConnectionNotificationFailed); ok {
+			s.failed(ctx, failed.Reason)
+		}
+	})
+	return o
+}
+
+// credentials has no way to fail, so [Session.open] does it instead.
+func (s *Session) credentials() (user, password string) {
+	s.dialErr.Store(nil)
+	if s.o.Password == nil {
+		return s.o.Username, ""
+	}
+	password, err := s.o.Password()
+	if err != nil {
+		err = fmt.Errorf("password of user %q: %w", s.o.Username, err)
+		s.dialErr.Store(&err)
+	}
+	return s.o.Username, password
+}
+
+// open is called for each attempt, after all messages of the connection before
+// have been handled.
+func (s *Session) open(ctx context.Context) (net.Conn, error) {
+	if err := s.dialErr.Load(); err != nil {
+		return nil, *err
+	}
+	s.inbox.reconnect()
+	s.tally.subscribed(0, nil)
+	l, err := s.dial(ctx)
+	if err != nil {
+		s.dialErr.Store(&err)
+		return nil, err
+	}
+	s.link.Store(l)
+	return l, nil
+}
+
+// receive handles one message, in the library's goroutine and in order.
+func (s *Session) receive(ctx context.Context, m mqtt.Message) {
+	arrival := s.o.Now().UnixNano()
+	out, known := s.decoder.Decode(m.Topic(), m.Payload(), arrival, m.Retained(), s.outcomes[:0])
+	s.outcomes = out
+	if !known && s.tally.unknown(arrival) {
+		s.o.Log.Warn("message on a topic that no tag reads; more of them are only counted", "topic", m.Topic())
+	}
+	var ack acknowledger
+	if m.Qos() > 0 {
+		ack = m
+	}
+	if !s.inbox.put(ctx, ack, out) {
+		s.overflow(out, m.Payload(), arrival)
+	}
+	for _, r := range s.tally.count(arrival, out) {
+		s.o.Log.Warn("message refused; more of this kind are only counted", "reason", r.Reason.String(), "refusal", r.Error())
+	}
+	s.inbox.acknowledge()
+}
+
+// overflow turns what found no room into refusals.
+func (s *Session) overflow(out []Outcome, payload []byte, arrival int64) {
+	text, cut := excerpt(payload)
+	for i := range out {
+		if out[i].Refusal == nil {
+			out[i].Refusal = &Refusal{Tag: s.tags[out[i].Tag].Name, Reason: Overflow, Payload: text, Cut: cut, At: arrival,
+				Detail: fmt.Sprintf("found the buffer of %d readings full; check the disk and the load of this machine", s.o.Buffer)}
+		}
+	}
+}
+
+// Take appends to buf the readings that came since the last call, in the order
+// of their arrival. They are the caller's until it calls [Session.Ack].
+func (s *Session) Take(buf []Received) []Received {
+	buf, left := s.inbox.take(buf)
+	if l := s.link.Load(); left && l != nil {
+		l.end(errLeft)
+	}
+	return buf
+}
+
+var errLeft = errors.New("the buffer was full; reconnecting, so that the broker delivers again what found no room")
+
+// Ack says that the readings are on disk. A message is acknowledged to the
+// broker when all its readings are, and all messages before it; one from before
+// a reconnection no more, because it is delivered again.
+func (s *Session) Ack(batch []Received) { s.inbox.stored(batch) }
+
+// Waiting returns how many messages of this connection are not yet
+// acknowledged. A broker sends only so many ahead (mosquitto: 20 unless told
+// otherwise), so that a caller that finds many here should store early.
+func (s *Session) Waiting() int { return s.inbox.waiting() }
+
+// Stats returns the counts so far.
+func (s *Session) Stats() Stats {
+	stats := s.tally.copy()
+	if c := s.client.Load(); c != nil {
+		stats.Connected = (*c).IsConnectionOpen()
+	}
+	if stats.Connected {
+		stats.LastError = ""
+	}
+	return stats
+}
