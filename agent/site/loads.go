@@ -95,8 +95,11 @@ func (o object) meter(s *Stream) {
 // checkStream looks at what does not go together.
 func (o object) checkStream(s Stream) {
 	if flow, ok := o.get("flow"); ok && s.FlowKind == unit.MolarFlow && s.Fluid != nil {
-		if s.Fluid.Phase() != thermo.Gas || s.Fluid.MolarMass() <= 0 {
+		switch {
+		case s.Fluid.Phase() != thermo.Gas:
 			flow.fault("a normal or standard volume flow is for gases, and %q is a %s", s.FluidName, s.Fluid.Phase())
+		case s.Fluid.MolarMass() <= 0:
+			flow.fault("a normal or standard volume flow needs a molar mass, and %q has none; want a mass flow or volume flow", s.FluidName)
 		}
 	}
 	if outlet, ok := o.get("outlet"); ok && !s.Outlet.Constant() && s.Inlet == s.Outlet {

@@ -73,7 +73,11 @@ func (r *reader) constant(v value, d unit.Dimension) float64 {
 	}
 	si := r.absolute(q)
 	if si <= 0 {
-		v.fault("%v is not above zero", q)
+		floor := "zero"
+		if d == unit.Pressure {
+			floor = "vacuum"
+		}
+		v.fault("%v is not above %s", q, floor)
 		return 0
 	}
 	return si
