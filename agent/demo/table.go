@@ -1,0 +1,61 @@
+package demo
+
+import (
+	"fmt"
+	"io"
+	"strings"
+	"time"
+
+	"heatreeve/agent/view"
+)
+
+// TableOptions say how a table of the loads is drawn.
+type TableOptions struct {
+	Width  int            // columns of the terminal, 0 is 80; what does not fit is left out
+	Colour bool           // colour the verdicts, whose word says the same
+	Zone   *time.Location // of the plant's time; nil is UTC
+	Notice string         // stands at the bottom
+}
+
+const usualWidth = 80
+
+// Table draws the loads of a snapshot, one a line, and below them why a load is
+// blind, how the broker does, and the plant's time. No line is wider than the
+// width. Uncertainties are expanded, k = 2, with two digits (JCGM 100:2008,
+// 7.2.6), and the figures go as far.
+func Table(w io.Writer, s *view.Snapshot, o TableOptions) error {
+	return write(w, tableLines(s, o))
+}
+
+func write(w io.Writer, lines []string) error {
+	_, err := io.WriteString(w, strings.Join(lines, "\n")+"\n")
+	return err
+}
+
+func tableLines(s *view.Snapshot, o TableOptions) []string {
+	if o.Width <= 0 {
+		o.Width = usualWidth
+	}
+	lines := []string{fit(heading(s, o.Zone), o.Width), ""}
+	lines = append(lines, grid(s, o)...)
+	lines = append(lines, "")
+	for i := range s.Loads {
+		if f := &s.Loads[i].Figure; !f.Measured() {
+			lines = append(lines, fit(fmt.Sprintf("%s is blind: %s", s.Loads[i].Name, f.Reason), o.Width))
+		}
+	}
+	for _, line := range standing(s) {
+		lines = append(lines, fit(line, o.Width))
+	}
+	return append(lines, wrap(o.Notice, o.Width)...)
+}
+
+func heading(s *view.Snapshot, zone *time.Location) string {
+	if s.At == 0 {
+		return s.Site + ", waiting for the first readings"
+	}
+	if zone == nil {
+		zone = time.UTC
+	}
+	return s.Site + ", " + time.Unix(0, s.At).In(zone).Format("Mon 2 Jan 2006 15:04:05 MST")
+}
