@@ -1,6 +1,6 @@
 package site
 
-import "maps"
+import "slices"
 
 // keys are the keys of each block. A star stands for a name that the file gives.
 var keys = map[string][]string{
@@ -20,7 +20,10 @@ var keys = map[string][]string{
 // "tags.*", "loads.*.stream" and so on, "" for the top. A star stands for a name
 // that the file gives.
 func Keys() map[string][]string {
-	all := maps.Clone(keys)
+	all := make(map[string][]string, len(keys)+2)
+	for block, names := range keys {
+		all[block] = slices.Clone(names)
+	}
 	all["fluids.*"] = fluidKeys()
 	all["fluids.*.gas"] = species()
 	return all
