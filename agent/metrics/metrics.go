@@ -46,9 +46,9 @@ var (
 	connected = desc("broker_connected", "1 while the session with the broker is open.")
 	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
 	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
-	overflow  = desc("broker_overflow_total", "Messages left with the broker because too many waited.")
 	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
 	bytes     = desc("history_bytes", "Bytes in use by the history on disk.")
+	lost      = desc("history_lost_readings_total", "Readings given up because the disk took nothing for long; the registers have them.")
 	failures  = desc("history_commit_failures_total", "Commits of the history that failed since the agent started.")
 )
 
@@ -68,7 +68,7 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
 	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
-		reading, readings, refused, late, repeated, eventTime, connected, losses, unknown, overflow, waiting, bytes, failures} {
+		reading, readings, refused, late, repeated, eventTime, connected, losses, unknown, waiting, bytes, failures, lost} {
 		ch <- d
 	}
 }
@@ -156,10 +156,10 @@ func (o sink) agent(s *view.Snapshot) {
 	o.gauge(connected, truth(s.Broker.Connected))
 	o.counter(losses, float64(s.Broker.Losses))
 	o.counter(unknown, float64(s.Broker.UnknownTopic))
-	o.counter(overflow, float64(s.Broker.Overflow))
 	o.gauge(waiting, float64(s.Broker.Waiting))
 	o.gauge(bytes, float64(s.History.Bytes))
 	o.counter(failures, float64(s.History.Failures))
+	o.counter(lost, float64(s.History.Lost))
 }
 
 func truth(b bool) float64 {

@@ -32,7 +32,7 @@ func snapshot() *view.Snapshot {
 			{Name: "TT-1", Newest: instant, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}},
 			{Name: "TT-2"},
 		},
-		Broker:  view.Broker{Connected: true, Losses: 4, UnknownTopic: 5, Overflow: 6, Waiting: 7},
+		Broker:  view.Broker{Connected: true, Losses: 4, UnknownTopic: 5, Waiting: 7},
 		History: view.History{Bytes: 65536, Failures: 1},
 	}
 }

@@ -59,7 +59,7 @@ type Broker struct {
 	Connected    bool
 	Losses       uint64 // connections lost since the agent started
 	UnknownTopic uint64 // messages on topics that no tag asks for
-	Overflow     uint64 // messages left to the broker because too many waited
+	Fault        string // why there is no connection; empty when there is
 	Waiting      int    // messages not yet acknowledged
 }
 
@@ -68,6 +68,7 @@ type History struct {
 	Bytes    int64
 	Failures uint64 // commits that failed since the agent started
 	Fault    string // why the last commit failed; empty when it did not
+	Lost     uint64 // readings given up because the disk took nothing for long
 }
 
 // Current returns the load's figure as it may be shown at the instant now, and

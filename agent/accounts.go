@@ -1,0 +1,93 @@
+package agent
+
+import (
+	"bytes"
+	"encoding/gob"
+	"fmt"
+	"time"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+)
+
+// wholeMinute is how much of a minute must be measured and flowing for it to
+// count in a verdict.
+const wholeMinute = 54 * time.Second
+
+// accounts are the engine and the judges of one plant, moved forward together a
+// beat at a time by one goroutine.
+type accounts struct {
+	cfg    loads.Config
+	engine *loads.Engine
+	judges []*design.Judge
+	closed []loads.Minute
+}
+
+func newAccounts(cfg loads.Config, targets []design.Target) (*accounts, error) {
+	engine, err := loads.New(cfg)
+	if err != nil {
+		return nil, err
+	}
+	a := &accounts{cfg: cfg, engine: engine}
+	for _, t := range targets {
+		a.judges = append(a.judges, design.NewJudge(t))
+	}
+	return a, nil
+}
+
+// advance puts one beat through and returns the minutes that closed; they are
+// good until the next call.
+func (a *accounts) advance(b loads.Beat) []loads.Minute {
+	a.closed = a.engine.Advance(b, a.closed[:0])
+	for _, m := range a.closed {
+		a.judges[m.Load].Observe(design.Minute{
+			Start:       m.Start,
+			Whole:       m.Measured-m.Idle >= int64(wholeMinute),
+			Duty:        m.Duty,
+			Uncertainty: m.Uncertainty,
+		})
+	}
+	return a.closed
+}
+
+// savedAccounts is the state of engine and judges; judges by the name of their
+// load.
+type savedAccounts struct {
+	Engine []byte
+	Judges map[string]savedJudge
+}
+
+type savedJudge struct {
+	Last    design.Verdict
+	Minutes []design.Minute
+}
+
+// save returns the state that restore goes on from.
+func (a *accounts) save() ([]byte, error) {
+	engine, err := a.engine.Save()
+	if err != nil {
+		return nil, err
+	}
+	s := savedAccounts{Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
+	for i, j := range a.judges {
+		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
+	}
+	var buf bytes.Buffer
+	if err := gob.NewEncoder(&buf).Encode(s); err != nil {
+		return nil, fmt.Errorf("save verdicts: %w", err)
+	}
+	return buf.Bytes(), nil
+}
+
+func (a *accounts) restore(state []byte) error {
+	var s savedAccounts
+	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
+		return fmt.Errorf("restore state of %d bytes: %w", len(state), err)
+	}
+	for i, j := range a.judges {
+		if was, ok := s.Judges[a.cfg.Loads[i].Name]; ok {
+			j.Restore(was.Last, was.Minutes)
+		}
+	}
+	return a.engine.Restore(s.Engine)
+}

@@ -1,0 +1,130 @@
+// Package agent is the running program: it wires the session with the broker,
+// the accounts, the history and the metrics together, and owns start and stop.
+//
+// Data takes one road: the session decodes, the beat takes what came, the
+// accounts compute, the history commits, the session acknowledges, readers see
+// a snapshot. One goroutine, the beat's, owns accounts and history; readers get
+// an immutable snapshot through an atomic pointer.
+package agent
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"log/slog"
+	"net"
+	"os"
+	"path/filepath"
+	"sync/atomic"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/collectors"
+	"golang.org/x/sync/errgroup"
+
+	"heatreeve/agent/metrics"
+	"heatreeve/agent/site"
+	"heatreeve/agent/view"
+	"heatreeve/ingest"
+	"heatreeve/store"
+)
+
+// HistoryFile is the name of the history in the data folder.
+const HistoryFile = "history.db"
+
+// Options are what the agent needs besides its site.
+type Options struct {
+	Data    string // folder of the history; made when it is not there
+	Listen  string // address of the metrics, "host:port"
+	Version string
+	Log     *slog.Logger
+	// Now is the clock that stamps arrivals and moves silent event time; nil is
+	// the system's. A demo may run a faster one. Waits and disk intervals keep
+	// to the system's clock.
+	Now func() time.Time
+	// Ready is told the address that is listened on once the agent serves; may
+	// be nil.
+	Ready func(net.Addr)
+	// Beat is told of each snapshot, in the goroutine of the beat; may be nil.
+	Beat func(*view.Snapshot)
+}
+
+// Agent is one plant's agent.
+type Agent struct {
+	site    *site.Site
+	o       Options
+	session *ingest.Session
+	latest  atomic.Pointer[view.Snapshot]
+	health  health
+	commits prometheus.Histogram
+}
+
+// New returns an agent for s that is not started yet.
+func New(s *site.Site, o Options) (*Agent, error) {
+	if o.Now == nil {
+		o.Now = time.Now
+	}
+	session, err := newSession(s, o)
+	if err != nil {
+		return nil, err
+	}
+	a := &Agent{site: s, o: o, session: session, commits: metrics.CommitSeconds()}
+	a.health.latest = &a.latest
+	return a, nil
+}
+
+// Run opens the history and the listener, connects, and works until ctx ends; it
+// then commits, acknowledges, disconnects and closes, in this order. Being asked
+// to stop is no error.
+func (a *Agent) Run(ctx context.Context) (err error) {
+	if err := os.MkdirAll(a.o.Data, 0o750); err != nil {
+		return fmt.Errorf("data folder: %w", err)
+	}
+	db, err := store.Open(filepath.Join(a.o.Data, HistoryFile), store.Options{
+		MaxAge: a.site.History.MaxAge, MaxBytes: a.site.History.MaxBytes, Log: a.o.Log,
+	})
+	if err != nil {
+		return err
+	}
+	defer func() { err = errors.Join(err, db.Close()) }()
+	books, err := openLedger(a.site, db, a.o.Log, time.Now())
+	if err != nil {
+		return err
+	}
+	listener, err := net.Listen("tcp", a.o.Listen)
+	if err != nil {
+		return fmt.Errorf("listen on %q: %w", a.o.Listen, err)
+	}
+	return a.work(ctx, books, listener)
+}
+
+// work runs the three parts. The session outlives the beat, so that the last
+// acknowledgements still go out.
+func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener) error {
+	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
+	defer endSession()
+	g, ctx := errgroup.WithContext(ctx)
+	g.Go(func() error { return a.session.Run(sessionCtx) })
+	g.Go(func() error {
+		defer endSession()
+		return a.beats(ctx, books)
+	})
+	g.Go(func() error { return serve(ctx, listener, handler(a.registry(), &a.health, a.o.Log)) })
+	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
+	if a.o.Ready != nil {
+		a.o.Ready(listener.Addr())
+	}
+	return g.Wait()
+}
+
+func (a *Agent) registry() *prometheus.Registry {
+	reg := prometheus.NewRegistry()
+	reg.MustRegister(
+		metrics.NewCollector(a.latest.Load, func() int64 { return a.o.Now().UnixNano() }),
+		metrics.BuildInfo(a.o.Version),
+		a.commits,
+		collectors.NewGoCollector(),
+		collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
+	)
+	return reg
+}

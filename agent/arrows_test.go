@@ -1,0 +1,107 @@
+package agent
+
+import (
+	"encoding/json"
+	"errors"
+	"io"
+	"os/exec"
+	"strings"
+	"testing"
+)
+
+// arrows says which of the project's packages each may import; a name ending in
+// /... stands for everything below as well. Tests may import more.
+var arrows = map[string][]string{
+	"thermo/...":   {"thermo/..."},
+	"store":        {},
+	"ingest":       {"thermo/unit"},
+	"configs":      {},
+	"agent/loads":  {"thermo"},
+	"agent/design": {"thermo"},
+	"agent/site":   {"thermo/..."},
+	"agent/view":   {"agent/loads", "agent/design"},
+	"agent/metrics": {
+		"agent/view", "agent/loads", "agent/design",
+	},
+	"agent/demo": {
+		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
+	},
+	"agent":               {"agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo/unit"},
+	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo"},
+	"deploy":              {},
+}
+
+// outside lists the pure packages and what they must not touch: clocks, files,
+// sockets, loggers.
+var outside = map[string][]string{
+	"thermo/...":   {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
+	"agent/loads":  {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"agent/design": {"os", "net", "log", "log/slog", "context", "net/http"},
+}
+
+func matches(pattern, path string) bool {
+	root, below := strings.CutSuffix(pattern, "/...")
+	return path == root || below && strings.HasPrefix(path, root+"/")
+}
+
+func find[T any](rules map[string]T, path string) (rule T, ok bool) {
+	for pattern, r := range rules {
+		if matches(pattern, path) {
+			return r, true
+		}
+	}
+	return rule, false
+}
+
+func TestArrowsPointOneWay(t *testing.T) {
+	out, err := exec.Command("go", "list", "-json=ImportPath,Imports", "heatreeve/...").Output()
+	if err != nil {
+		t.Fatalf("go list: %v", err)
+	}
+	packages := 0
+	for d := json.NewDecoder(strings.NewReader(string(out))); ; packages++ {
+		var p struct {
+			ImportPath string
+			Imports    []string
+		}
+		if err := d.Decode(&p); errors.Is(err, io.EOF) {
+			break
+		} else if err != nil {
+			t.Fatal(err)
+		}
+		path := strings.TrimPrefix(p.ImportPath, "heatreeve/")
+		allowed, known := find(arrows, path)
+		if !known {
+			t.Errorf("package %s is in no rule: say in arrows whom it may import", path)
+		}
+		banned, _ := find(outside, path)
+		for _, imported := range p.Imports {
+			checkArrow(t, path, imported, allowed, banned)
+		}
+	}
+	if packages < len(arrows) {
+		t.Errorf("go list shows %d packages, fewer than the %d rules", packages, len(arrows))
+	}
+}
+
+func checkArrow(t *testing.T, path, imported string, allowed, banned []string) {
+	t.Helper()
+	for _, b := range banned {
+		if imported == b {
+			t.Errorf("%s imports %s, but is pure: pass in what it needs", path, b)
+		}
+	}
+	own, ours := strings.CutPrefix(imported, "heatreeve/")
+	if !ours {
+		if strings.HasPrefix(path, "thermo") && strings.Contains(imported, ".") {
+			t.Errorf("%s imports %s, but thermo needs the standard library only", path, imported)
+		}
+		return
+	}
+	for _, a := range allowed {
+		if matches(a, own) {
+			return
+		}
+	}
+	t.Errorf("%s imports %s; it may import only %v", path, own, allowed)
+}

@@ -1,0 +1,166 @@
+package agent
+
+import (
+	"context"
+	"fmt"
+	"time"
+
+	"heatreeve/agent/loads"
+	"heatreeve/agent/view"
+	"heatreeve/ingest"
+	"heatreeve/store"
+)
+
+const (
+	// trimEvery is how often the history's bounds are looked at.
+	trimEvery = 10 * time.Minute
+	// smallWindow is the number of unacknowledged messages at which the agent
+	// commits early when nothing more comes: a broker that allows only 20 in
+	// flight is then waiting for us.
+	smallWindow = 16
+	// eagerReadings is how many readings are committed without waiting for the
+	// interval.
+	eagerReadings = 20_000
+)
+
+// rhythm is the state of the beat's loop.
+type rhythm struct {
+	pace      pace
+	books     *ledger
+	received  []ingest.Received // taken in this beat
+	unacked   []ingest.Received // taken and not yet on disk
+	readings  []ingest.Reading
+	stats     ingest.Stats
+	committed time.Time // system clock
+	trimmed   time.Time
+}
+
+// beats moves the accounts forward until ctx ends, then commits what is left.
+func (a *Agent) beats(ctx context.Context, books *ledger) error {
+	notify("READY=1")
+	defer notify("STOPPING=1")
+	now := time.Now()
+	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now}
+	r.pace.through = books.accounts.engine.Snapshot().Through
+	ticker := time.NewTicker(a.site.Timing.Beat)
+	defer ticker.Stop()
+	for {
+		a.beat(r, time.Now())
+		select {
+		case <-ticker.C:
+		case <-ctx.Done():
+			return a.last(r)
+		}
+	}
+}
+
+// beat takes what came, computes, commits when due, and publishes.
+func (a *Agent) beat(r *rhythm, system time.Time) {
+	a.take(r)
+	if a.due(r, system) {
+		a.commit(r, system, false)
+	}
+	if system.Sub(r.trimmed) >= trimEvery {
+		r.trimmed = system
+		if err := r.books.trim(r.pace.through); err != nil {
+			a.o.Log.Error("history is not trimmed", "error", err)
+		}
+	}
+	a.publish(r)
+	a.health.tick(system)
+	notify("WATCHDOG=1")
+}
+
+// last ends the work: what has come is committed with a checkpoint and
+// acknowledged.
+func (a *Agent) last(r *rhythm) error {
+	a.take(r)
+	if !a.commit(r, time.Now(), true) {
+		return fmt.Errorf("last commit: %s", r.books.fault)
+	}
+	return nil
+}
+
+func (a *Agent) take(r *rhythm) {
+	now := a.o.Now().UnixNano()
+	r.received = a.session.Take(r.received[:0])
+	r.unacked = append(r.unacked, r.received...)
+	r.readings = r.readings[:0]
+	for _, x := range r.received {
+		r.readings = append(r.readings, x.Reading)
+		r.pace.reading(x.At, x.Stamped, now)
+	}
+	r.stats = a.session.Stats()
+	through := r.pace.advance(now, r.stats.Connected, a.session.Waiting() > 0)
+	r.books.beat(r.readings, through)
+}
+
+func (a *Agent) due(r *rhythm, system time.Time) bool {
+	return system.Sub(r.committed) >= a.site.Timing.Commit ||
+		r.books.waiting >= eagerReadings ||
+		len(r.received) == 0 && len(r.unacked) >= smallWindow
+}
+
+// commit writes to disk and only then acknowledges to the broker.
+func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
+	r.committed = system
+	begun := time.Now()
+	err := r.books.commit(system, checkpoint)
+	a.commits.Observe(time.Since(begun).Seconds())
+	if err != nil {
+		if store.IsFull(err) {
+			r.trimmed = time.Time{} // make room at once
+		}
+		return false
+	}
+	a.session.Ack(r.unacked)
+	r.unacked = r.unacked[:0]
+	return true
+}
+
+// publish shows readers the state after this beat.
+func (a *Agent) publish(r *rhythm) {
+	l, stats := r.books, &r.stats
+	s := l.accounts.engine.Snapshot()
+	v := &view.Snapshot{
+		Site:  a.site.Name,
+		At:    s.Through,
+		Slack: int64(a.site.Timing.Lateness + 2*a.site.Timing.Beat + 2*a.site.Timing.Grid),
+		Loads: make([]view.Load, len(s.Loads)),
+		Tags:  make([]view.Tag, len(s.Tags)),
+		Broker: view.Broker{
+			Connected: stats.Connected, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
+		},
+		History: view.History{Bytes: l.store.Bytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost},
+	}
+	for i := range s.Loads {
+		v.Loads[i] = a.loadView(l, i, s.Loads[i])
+	}
+	for i, t := range s.Tags {
+		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
+	}
+	a.latest.Store(v)
+	if a.o.Beat != nil {
+		a.o.Beat(v)
+	}
+}
+
+func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
+	d := a.site.Loads[i].Design
+	return view.Load{
+		Name: a.site.Loads[i].Name, Figure: s.Figure, Means: s.Means, Booked: l.committed[i],
+		Design: d.Duty, Allow: d.Allow,
+		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
+	}
+}
+
+// reasons are the names under which refused messages are counted.
+var reasons = names(ingest.Reasons(), ingest.Reason.String)
+
+func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
+	v := view.Tag{Name: name, Newest: t.Newest, Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated, Refused: make([]view.Refusal, len(reasons))}
+	for i, reason := range reasons {
+		v.Refused[i] = view.Refusal{Reason: reason, Count: s.Refused[i]}
+	}
+	return v
+}

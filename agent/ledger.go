@@ -1,0 +1,252 @@
+package agent
+
+import (
+	"fmt"
+	"log/slog"
+	"math"
+	"time"
+
+	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
+	"heatreeve/agent/view"
+	"heatreeve/ingest"
+	"heatreeve/store"
+)
+
+const (
+	// checkpointEvery bounds what a restart has to put through again.
+	checkpointEvery = 10 * time.Minute
+	// recallSpan is how far back repeats from the broker are recognised after a
+	// restart.
+	recallSpan = 10 * time.Minute
+	// maxUncommitted bounds the readings that wait in memory for a disk that
+	// takes nothing; beyond it the oldest are given up and counted.
+	maxUncommitted = 200_000
+)
+
+// ledger keeps the accounts and the history of them together: what the accounts
+// took in since the last commit waits here until it is on disk.
+type ledger struct {
+	accounts  *accounts
+	store     *store.Store
+	log       *slog.Logger
+	tagIDs    []uint32
+	loadIDs   []uint32
+	batch     store.Batch
+	waiting   int // readings in batch
+	committed []view.Registers
+	saved     time.Time // of the last checkpoint
+	forced    bool      // readings were given up, so only a checkpoint can carry the accounts on
+	lost      uint64    // readings given up
+	failures  uint64
+	fault     string
+}
+
+// openLedger takes up the accounts where the history left them.
+func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) (*ledger, error) {
+	a, err := newAccounts(plantOf(s), targetsOf(s))
+	if err != nil {
+		return nil, err
+	}
+	l := &ledger{accounts: a, store: db, log: log, saved: now}
+	if l.tagIDs, err = db.IDs("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
+		return nil, err
+	}
+	if l.loadIDs, err = db.IDs("load", names(s.Loads, func(t site.HeatLoad) string { return t.Name })); err != nil {
+		return nil, err
+	}
+	if err := l.resume(); err != nil {
+		return nil, fmt.Errorf("resume the accounts: %w", err)
+	}
+	if err := l.commit(now, true); err != nil {
+		return nil, err
+	}
+	return l, nil
+}
+
+func names[T any](all []T, name func(T) string) []string {
+	out := make([]string, len(all))
+	for i, x := range all {
+		out[i] = name(x)
+	}
+	return out
+}
+
+// resume restores the last checkpoint and puts the beats since through again. A
+// load that the checkpoint does not know, because the site file left it out for a
+// while, goes on from its registers. Every run begins with a checkpoint of its
+// own, so no beat counts for a load of another site file.
+func (l *ledger) resume() error {
+	known, err := l.totals()
+	if err != nil {
+		return err
+	}
+	for i, r := range known {
+		l.accounts.engine.SetRegisters(i, r.Given, r.Taken, nanoseconds(r.Measured), nanoseconds(r.Missing))
+	}
+	state, ok, err := l.store.Checkpoint()
+	if err != nil {
+		return err
+	}
+	if ok {
+		if err := l.accounts.restore(state); err != nil {
+			return err
+		}
+	}
+	index := l.tagIndex()
+	for b, err := range l.store.Before(recallSpan) {
+		if err != nil {
+			return err
+		}
+		l.accounts.engine.Recall(readingsOf(b, index))
+	}
+	for b, err := range l.store.Since() {
+		if err != nil {
+			return err
+		}
+		l.accounts.advance(loads.Beat{Readings: readingsOf(b, index), Through: b.Through})
+	}
+	return nil
+}
+
+// totals returns the registers that the history holds for today's loads, by
+// their index.
+func (l *ledger) totals() (map[int]store.Register, error) {
+	all, err := l.store.Registers()
+	if err != nil {
+		return nil, err
+	}
+	known := make(map[int]store.Register)
+	for _, r := range all {
+		for i, id := range l.loadIDs {
+			if id == r.Load {
+				known[i] = r
+			}
+		}
+	}
+	return known, nil
+}
+
+func (l *ledger) tagIndex() map[uint32]int {
+	index := make(map[uint32]int, len(l.tagIDs))
+	for i, id := range l.tagIDs {
+		index[id] = i
+	}
+	return index
+}
+
+// readingsOf translates a stored beat; readings of tags that the site no longer
+// has are passed over.
+func readingsOf(b store.Beat, index map[uint32]int) []loads.Reading {
+	out := make([]loads.Reading, 0, len(b.Readings))
+	for _, r := range b.Readings {
+		if i, ok := index[r.Tag]; ok {
+			out = append(out, loads.Reading{Tag: i, At: r.At, Value: r.Value})
+		}
+	}
+	return out
+}
+
+// beat puts what came in through the accounts and keeps it for the next commit.
+func (l *ledger) beat(received []ingest.Reading, through int64) {
+	kept := store.Beat{Through: through, Readings: make([]store.Reading, len(received))}
+	beat := loads.Beat{Through: through, Readings: make([]loads.Reading, len(received))}
+	for i, r := range received {
+		kept.Readings[i] = store.Reading{Tag: l.tagIDs[r.Tag], At: r.At, Value: r.Value, Stamped: r.Stamped}
+		beat.Readings[i] = loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value}
+	}
+	for _, m := range l.accounts.advance(beat) {
+		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))
+	}
+	l.batch.Beats = append(l.batch.Beats, kept)
+	l.waiting += len(received)
+	l.bound()
+}
+
+func (l *ledger) minute(m loads.Minute) store.Minute {
+	return store.Minute{
+		Load: l.loadIDs[m.Load], Start: m.Start,
+		Measured: seconds(m.Measured), Missing: seconds(m.Missing),
+		Given: m.Given, Taken: m.Taken,
+		Duty: m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
+		Flow: m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure,
+	}
+}
+
+func seconds(ns int64) float64 { return float64(ns) / 1e9 }
+
+// nanoseconds goes back from seconds, to the millisecond: beyond that a float64 of
+// many years holds no digits.
+func nanoseconds(s float64) int64 { return int64(math.Round(s*1e3)) * 1e6 }
+
+// bound gives up the oldest readings when the disk has taken nothing for long.
+// The accounts have them; a checkpoint carries those on.
+func (l *ledger) bound() {
+	for l.waiting > maxUncommitted {
+		n := len(l.batch.Beats[0].Readings)
+		l.waiting -= n
+		l.lost += uint64(n)
+		l.batch.Beats = l.batch.Beats[1:]
+		l.forced = true
+	}
+}
+
+// commit writes what waits, with the registers, and with a checkpoint when one is
+// due or asked for. After an error everything waits on.
+func (l *ledger) commit(now time.Time, checkpoint bool) error {
+	registers := l.registers()
+	l.batch.Registers = l.batch.Registers[:0]
+	for i, r := range registers {
+		l.batch.Registers = append(l.batch.Registers, store.Register{Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, Measured: seconds(r.Measured), Missing: seconds(r.Missing)})
+	}
+	l.batch.Checkpoint = nil
+	checkpoint = checkpoint || l.forced || now.Sub(l.saved) >= checkpointEvery
+	if checkpoint {
+		state, err := l.accounts.save()
+		if err != nil {
+			return err
+		}
+		l.batch.Checkpoint = state
+	}
+	if err := l.store.Commit(l.batch); err != nil {
+		l.fail(err)
+		return err
+	}
+	if checkpoint {
+		l.saved, l.forced = now, false
+	}
+	l.committed, l.fault, l.waiting = registers, "", 0
+	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
+	return nil
+}
+
+// fail counts a failed commit and logs the first of a row.
+func (l *ledger) fail(err error) {
+	l.failures++
+	if l.fault == "" {
+		l.log.Error("history is not written; the agent goes on and tries again", "error", err)
+	}
+	l.fault = err.Error()
+}
+
+// trim keeps the history within its bounds.
+func (l *ledger) trim(now int64) error {
+	t, err := l.store.Trim(now)
+	if err != nil {
+		return err
+	}
+	if t.Readings+t.Minutes > 0 {
+		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "bytes", l.store.Bytes())
+	}
+	return nil
+}
+
+// registers are the totals of the accounts as they stand.
+func (l *ledger) registers() []view.Registers {
+	s := l.accounts.engine.Snapshot()
+	out := make([]view.Registers, len(s.Loads))
+	for i, r := range s.Loads {
+		out[i] = view.Registers{Given: r.Given, Taken: r.Taken, Measured: r.Measured, Missing: r.Missing}
+	}
+	return out
+}

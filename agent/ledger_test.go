@@ -1,0 +1,209 @@
+package agent
+
+import (
+	"log/slog"
+	"path/filepath"
+	"strings"
+	"testing"
+	"time"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/site"
+	"heatreeve/agent/view"
+	"heatreeve/ingest"
+	"heatreeve/store"
+)
+
+const benchSite = `
+site: Bench
+timezone: UTC
+barometer: 101.3 kPa
+broker: {url: "mqtt://127.0.0.1:1883"}
+tags:
+  TI: {topic: a, unit: °C, value: /v, time: /ts, accuracy: IEC 60751 A}
+  TO: {topic: b, unit: °C, value: /v, time: /ts, accuracy: IEC 60751 A}
+  FT: {topic: c, unit: kg/s, value: /v, time: /ts, accuracy: 0.5 % of reading}
+loads:
+  main:
+    stream: {fluid: water, flow: FT, inlet: TI, outlet: TO, pressure: 3 barg, gives: heat}
+    design: {duty: 193 kW, allow: 8 %, lasting: 2 min}
+`
+
+const annex = `
+  annex:
+    stream: {fluid: water, flow: FT, inlet: TI, outlet: TO, pressure: 3 barg, gives: heat}
+`
+
+func parsed(t *testing.T, text string) *site.Site {
+	t.Helper()
+	s, err := site.Parse("bench.yaml", []byte(text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
+}
+
+var clock = time.Unix(1_700_000_040, 0)
+
+// open returns a ledger on the history at path; close is called before the next.
+func open(t *testing.T, s *site.Site, path string, o store.Options) (l *ledger, shut func()) {
+	t.Helper()
+	db, err := store.Open(path, o)
+	if err != nil {
+		t.Fatal(err)
+	}
+	l, err = openLedger(s, db, slog.New(slog.DiscardHandler), clock)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return l, func() {
+		if err := db.Close(); err != nil {
+			t.Fatal(err)
+		}
+	}
+}
+
+// feed puts one beat a second through, with readings each ten seconds.
+func feed(l *ledger, from, until int64) {
+	for s := from; s < until; s++ {
+		at := clock.UnixNano() + s*sec
+		var in []ingest.Reading
+		if s%10 == 0 {
+			in = []ingest.Reading{
+				{Tag: 0, At: at, Value: 350 + float64(s%7), Stamped: true},
+				{Tag: 1, At: at, Value: 330, Stamped: true},
+				{Tag: 2, At: at, Value: 2, Stamped: true},
+			}
+		}
+		l.beat(in, at-5*sec)
+	}
+}
+
+// A run that is cut off after any commit goes on to the same totals and the same
+// verdict as one that was not.
+func TestLedgerAfterACut(t *testing.T) {
+	s := parsed(t, benchSite)
+	whole, shut := open(t, s, filepath.Join(t.TempDir(), "h.db"), store.Options{})
+	feed(whole, 0, 600)
+	want, verdict := whole.registers(), whole.accounts.judges[0].Last
+	shut()
+	if verdict != design.Holding || want[0].Given == 0 {
+		t.Fatalf("verdict %v, given %g J: the course does not show anything", verdict, want[0].Given)
+	}
+
+	path := filepath.Join(t.TempDir(), "h.db")
+	at := int64(0)
+	for cut := int64(7); cut <= 600; cut += 97 {
+		l, shut := open(t, s, path, store.Options{})
+		feed(l, at, cut)
+		if err := l.commit(clock, false); err != nil {
+			t.Fatal(err)
+		}
+		feed(l, cut, cut+20) // not committed: the broker will deliver it again
+		at = cut
+		shut()
+	}
+	l, shut := open(t, s, path, store.Options{})
+	defer shut()
+	feed(l, at, 600)
+	if got := l.registers(); got[0] != want[0] {
+		t.Errorf("registers %+v, want %+v", got[0], want[0])
+	}
+	if got := l.accounts.judges[0].Last; got != verdict {
+		t.Errorf("verdict %v, want %v", got, verdict)
+	}
+}
+
+// Totals shown are those on disk, so that they never fall after a restart.
+func TestLedgerShowsWhatIsCommitted(t *testing.T) {
+	l, shut := open(t, parsed(t, benchSite), filepath.Join(t.TempDir(), "h.db"), store.Options{})
+	defer shut()
+	feed(l, 0, 100)
+	if l.committed[0] != (view.Registers{}) {
+		t.Errorf("committed %+v before the first commit, want nothing", l.committed[0])
+	}
+	if err := l.commit(clock, false); err != nil {
+		t.Fatal(err)
+	}
+	if l.committed[0] != l.registers()[0] || l.committed[0].Given == 0 {
+		t.Errorf("committed %+v, want %+v", l.committed[0], l.registers()[0])
+	}
+}
+
+// A load that the site file leaves out for a while finds its registers again.
+func TestLedgerKeepsTheRegistersOfALoadThatWasAway(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	both, one := parsed(t, benchSite+annex), parsed(t, benchSite)
+	run := func(s *site.Site, from, until int64) []view.Registers {
+		l, shut := open(t, s, path, store.Options{})
+		defer shut()
+		feed(l, from, until)
+		if err := l.commit(clock, true); err != nil {
+			t.Fatal(err)
+		}
+		return l.registers()
+	}
+	first := run(both, 0, 100)
+	run(one, 100, 200)
+	l, shut := open(t, both, path, store.Options{})
+	defer shut()
+	if got := l.registers()[1]; got.Given != first[1].Given || got.Measured != first[1].Measured {
+		t.Errorf("annex comes back with %+v, left with %+v", got, first[1])
+	}
+	if got := l.registers()[0]; got.Given <= first[0].Given {
+		t.Errorf("main has %g J, not more than the %g J of the first run", got.Given, first[0].Given)
+	}
+}
+
+// A disk that takes nothing stops neither the accounts nor the agent: failures are
+// counted, what waits is bounded, and with the disk's return everything that the
+// accounts hold is written.
+func TestLedgerOnAFullDisk(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	s := parsed(t, benchSite)
+	l, shut := open(t, s, path, store.Options{MaxBytes: 1 << 20, MaxFile: 1 << 20})
+	noise := func(at int64) []ingest.Reading {
+		in := make([]ingest.Reading, 3000)
+		for i := range in {
+			in[i] = ingest.Reading{Tag: i % 3, At: clock.UnixNano() + at*sec + int64(i)*7919, Value: 300 + float64(i)*0.1234567891 + float64(at)*0.987654321}
+		}
+		return in
+	}
+	at := int64(0)
+	for ; l.failures < 3 && at < 2000; at++ {
+		l.beat(noise(at), clock.UnixNano()+(at-5)*sec)
+		l.commit(clock, false)
+	}
+	if l.failures < 3 || !strings.Contains(l.fault, "history") {
+		t.Fatalf("%d failures, fault %q after %d beats into a file of 1 MiB", l.failures, l.fault, at)
+	}
+	for range 100 {
+		l.beat(noise(at), clock.UnixNano()+(at-5)*sec)
+		at++
+	}
+	if l.waiting > maxUncommitted || l.lost == 0 {
+		t.Errorf("%d readings wait and %d were given up; want at most %d waiting", l.waiting, l.lost, maxUncommitted)
+	}
+	totals := l.registers()[0]
+	shut()
+
+	// The same accounts on a disk with room.
+	db, err := store.Open(filepath.Join(t.TempDir(), "roomy.db"), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	l.store = db
+	if _, err := db.IDs("load", []string{"main"}); err != nil {
+		t.Fatal(err)
+	}
+	if err := l.commit(clock, false); err != nil {
+		t.Fatal(err)
+	}
+	if l.fault != "" || l.committed[0] != totals {
+		t.Errorf("fault %q, committed %+v; want none and %+v", l.fault, l.committed[0], totals)
+	}
+	if _, ok, err := db.Checkpoint(); !ok || err != nil {
+		t.Errorf("checkpoint written: %v, %v; readings were given up, so it must be", ok, err)
+	}
+}

@@ -1,0 +1,46 @@
+package agent
+
+import "time"
+
+// quiet is how long the session must have been up and silent before the clock
+// alone moves event time: long enough for a broker to deliver what it kept for
+// us.
+const quiet = 15 * time.Second
+
+// pace decides how far event time has come. It follows the newest source stamp,
+// less the lateness, and never runs ahead of the clock, so that a publisher with
+// a fast clock cannot make the others late. While the broker is away it stands
+// still, because what the broker kept is still to come; when the session is up
+// and nothing comes, the clock takes over.
+type pace struct {
+	lateness time.Duration
+	stamped  bool // the site has tags with source stamps: only those lead
+	newest   int64
+	through  int64
+	heard    int64 // clock when readings last came, or the session last opened
+	open     bool
+}
+
+// reading notes a reading stamped at; fromSource says whether the stamp came from
+// the payload.
+func (p *pace) reading(at int64, fromSource bool, now int64) {
+	p.heard = max(p.heard, now)
+	if fromSource || !p.stamped {
+		p.newest = max(p.newest, at)
+	}
+}
+
+// advance returns the instant up to which event time has come at the clock's
+// now. Waiting says that messages are held back for want of an acknowledgement,
+// so that silence means nothing.
+func (p *pace) advance(now int64, connected, waiting bool) int64 {
+	if connected != p.open || !connected || waiting {
+		p.open, p.heard = connected, now
+	}
+	to := min(p.newest, now)
+	if p.open && now-p.heard >= int64(quiet) {
+		to = now
+	}
+	p.through = max(p.through, to-int64(p.lateness))
+	return p.through
+}

@@ -1,0 +1,70 @@
+package agent
+
+import (
+	"testing"
+	"time"
+)
+
+const sec = int64(time.Second)
+
+func TestPaceFollowsTheStamps(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1000*sec, true, 1001*sec)
+	if got := p.advance(1001*sec, true, false); got != 995*sec {
+		t.Errorf("through %d s, want 995", got/sec)
+	}
+	p.reading(990*sec, true, 1002*sec)
+	if got := p.advance(1002*sec, true, false); got != 995*sec {
+		t.Errorf("through %d s after an older stamp, want 995", got/sec)
+	}
+}
+
+func TestPaceIsNotLedByAFastClock(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1025*sec, true, 1000*sec)
+	if got := p.advance(1000*sec, true, false); got != 995*sec {
+		t.Errorf("through %d s, want 995: our own clock bounds it", got/sec)
+	}
+}
+
+func TestPaceIsNotLedByArrivalsWhereSomeAreStamped(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(500*sec, true, 1000*sec)   // the broker's backlog
+	p.reading(1000*sec, false, 1000*sec) // a bare number among it
+	if got := p.advance(1000*sec, true, false); got != 495*sec {
+		t.Errorf("through %d s, want 495", got/sec)
+	}
+}
+
+func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1000*sec, true, 1000*sec)
+	p.advance(1000*sec, true, false)
+	if got := p.advance(1014*sec, true, false); got != 995*sec {
+		t.Errorf("through %d s after 14 s of silence, want 995", got/sec)
+	}
+	if got := p.advance(1015*sec, true, false); got != 1010*sec {
+		t.Errorf("through %d s after 15 s of silence, want 1010", got/sec)
+	}
+	p.advance(1016*sec, false, false)
+	if got := p.advance(2000*sec, false, false); got != 1010*sec {
+		t.Errorf("through %d s while the broker is away, want 1010", got/sec)
+	}
+	if got := p.advance(2001*sec, true, false); got != 1010*sec {
+		t.Errorf("through %d s just after the broker is back, want 1010", got/sec)
+	}
+	if got := p.advance(2016*sec, true, false); got != 2011*sec {
+		t.Errorf("through %d s after 15 s of silence again, want 2011", got/sec)
+	}
+}
+
+func TestWaitingMessagesAreNoSilence(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1000*sec, true, 1000*sec)
+	for s := int64(1000); s < 1100; s++ {
+		p.advance(s*sec, true, true)
+	}
+	if p.through != 995*sec {
+		t.Errorf("through %d s while messages wait for the disk, want 995", p.through/sec)
+	}
+}

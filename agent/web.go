@@ -1,0 +1,75 @@
+package agent
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"log/slog"
+	"net"
+	"net/http"
+	"strings"
+	"time"
+
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/promhttp"
+)
+
+// Safety is the line that every face of the program carries.
+const Safety = "Heatreeve informs. It is no safety function, interlock or alarm of record, and no billing meter. Site codes, the plant's own protection and licensed people come first."
+
+// handler serves the metrics and the two answers that supervisors ask for.
+func handler(reg *prometheus.Registry, health *health, log *slog.Logger) http.Handler {
+	mux := http.NewServeMux()
+	mux.Handle("GET /metrics", promhttp.HandlerFor(reg, promhttp.HandlerOpts{
+		Registry:            reg,
+		ErrorLog:            slog.NewLogLogger(log.Handler(), slog.LevelError),
+		ErrorHandling:       promhttp.ContinueOnError,
+		MaxRequestsInFlight: 3,
+		Timeout:             8 * time.Second,
+	}))
+	mux.HandleFunc("GET /healthz", answer(health.alive))
+	mux.HandleFunc("GET /readyz", answer(health.ready))
+	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
+		fmt.Fprintf(w, "Heatreeve\n\n/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n\n%s\n", Safety)
+	})
+	return mux
+}
+
+// answer turns a list of what is wrong into 200 or 503, a line a fault.
+func answer(faults func() []string) http.HandlerFunc {
+	return func(w http.ResponseWriter, _ *http.Request) {
+		wrong := faults()
+		if len(wrong) == 0 {
+			io.WriteString(w, "ok\n")
+			return
+		}
+		http.Error(w, strings.Join(wrong, "\n"), http.StatusServiceUnavailable)
+	}
+}
+
+// serve answers on l until ctx ends; it then lets requests under way finish for a
+// moment.
+func serve(ctx context.Context, l net.Listener, h http.Handler) error {
+	server := &http.Server{
+		Handler: h, ReadHeaderTimeout: 5 * time.Second, ReadTimeout: 10 * time.Second,
+		WriteTimeout: 20 * time.Second, IdleTimeout: time.Minute, MaxHeaderBytes: 16 << 10,
+	}
+	closed := make(chan struct{})
+	stop := context.AfterFunc(ctx, func() {
+		defer close(closed)
+		grace, cancel := context.WithTimeout(context.WithoutCancel(ctx), time.Second)
+		defer cancel()
+		if server.Shutdown(grace) != nil {
+			server.Close()
+		}
+	})
+	err := server.Serve(l)
+	if !stop() {
+		<-closed
+	}
+	if errors.Is(err, http.ErrServerClosed) {
+		return nil
+	}
+	return fmt.Errorf("serve on %s: %w", l.Addr(), err)
+}
