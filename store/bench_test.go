@@ -146,3 +146,71 @@ func benchmarkPlain(b *testing.B, commits, seconds int) {
 	readings := float64(commits * seconds * 5)
 	b.ReportMetric(float64(written(db, commits))/readings, "B/reading")
 }
+
+// year is a file with a year of minutes of 10 loads and the last weeks of 50
+// tags, as much as the default bound holds.
+func year(b *testing.B) (path string, end int64) {
+	b.Helper()
+	path = filepath.Join(b.TempDir(), "history.db")
+	s, err := Open(path, Options{MaxBytes: 1 << 30})
+	if err != nil {
+		b.Fatal(err)
+	}
+	const start = 20_000 * day
+	w := newWalk(50)
+	w.at = start
+	for hour := range int64(365 * 24) {
+		at := start + hour*3600*second
+		batch := Batch{Checkpoint: make([]byte, 4000)}
+		if hour >= 300*24 {
+			w.at = at
+			batch.Beats = w.beats(3600)
+		}
+		for minute := range int64(60) {
+			for load := range uint32(10) {
+				v := 1e5 / (float64(load) + math.Sqrt(float64(hour*60+minute+3)))
+				batch.Minutes = append(batch.Minutes, Minute{Load: load, Start: at + minute*60*second, Measured: 60,
+					Given: 60 * v, Duty: v, DutyMin: v * 0.99, DutyMax: v * 1.01, DutyUncertainty: v / 99, Flow: v / 12345,
+					Inlet: 350.1 + v/9999, Outlet: 340.2 + v/9999, Pressure: 5.1e5 + v})
+			}
+		}
+		commit(b, s, batch)
+	}
+	if err := s.Close(); err != nil {
+		b.Fatal(err)
+	}
+	return path, start + 365*day
+}
+
+// BenchmarkYear opens a file with a year in it, and reads 30 days of minutes of
+// one load of ten, and one day of one tag of fifty.
+func BenchmarkYear(b *testing.B) {
+	path, end := year(b)
+	b.Run("open", func(b *testing.B) {
+		for b.Loop() {
+			s, err := Open(path, Options{MaxBytes: 1 << 30})
+			if err != nil {
+				b.Fatal(err)
+			}
+			b.ReportMetric(float64(s.Bytes()), "B/file")
+			if err := s.Close(); err != nil {
+				b.Fatal(err)
+			}
+		}
+	})
+	s := openStore(b, path, Options{MaxBytes: 1 << 30})
+	b.Run("minutes", func(b *testing.B) {
+		for b.Loop() {
+			if n := len(drain(b, s.Minutes(3, end-30*day, end))); n != 30*1440 {
+				b.Fatalf("%d minutes", n)
+			}
+		}
+	})
+	b.Run("readings", func(b *testing.B) {
+		for b.Loop() {
+			if n := len(drain(b, s.Readings(3, end-30*day, end-29*day))); n != 8640 {
+				b.Fatalf("%d readings", n)
+			}
+		}
+	})
+}

@@ -47,11 +47,10 @@ func copyTo(path string, db *bolt.DB) error {
 	if err := os.Remove(path); err != nil && !errors.Is(err, fs.ErrNotExist) {
 		return err
 	}
-	to, err := bolt.Open(path, fileMode, boltOptions(0))
+	to, err := openBolt(path, 0)
 	if err != nil {
 		return err
 	}
-	to.AllocSize = growBytes
 	return errors.Join(bolt.Compact(to, db, compactSlice), to.Sync(), to.Close())
 }
 

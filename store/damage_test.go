@@ -252,3 +252,37 @@ func TestClosed(t *testing.T) {
 		t.Error("Trim of a closed store gave no error")
 	}
 }
+
+// TestMissingGroup takes a group out of the middle, and the first one after the
+// checkpoint: either is told, and the other groups still come.
+func TestMissingGroup(t *testing.T) {
+	for _, place := range []int{3, 0} {
+		path, _, _ := sample(t)
+		editFile(t, path, func(tx *bolt.Tx) error {
+			// As if the checkpoint stood for the first record only.
+			if err := putCheckpoint(tx, checkpoint{true, 1, []byte{}}); err != nil {
+				return err
+			}
+			c := tx.Bucket(bucketJournal).Cursor()
+			k, _ := c.First()
+			for range place {
+				k, _ = c.Next()
+			}
+			return tx.Bucket(bucketJournal).DeleteBucket(append([]byte{}, k...))
+		})
+		s := openStore(t, path, Options{})
+		told, beats, last := 0, 0, Beat{}
+		for b, err := range s.Since() {
+			if err != nil {
+				if told++; !errors.Is(err, ErrDamaged) || !strings.Contains(err.Error(), "are missing") {
+					t.Errorf("group %d gone: %v", place, err)
+				}
+				continue
+			}
+			beats, last = beats+1, b
+		}
+		if told != 1 || beats < damageNumbers/2 || last.Through != damageNumbers*second {
+			t.Errorf("group %d gone: told %d times, %d beats, the last %v", place, told, beats, last.Through)
+		}
+	}
+}

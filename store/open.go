@@ -136,6 +136,10 @@ func openChecked(path string, limit int) (*bolt.DB, error) {
 	if err := checkFile(path); err != nil {
 		return nil, err
 	}
+	return openBolt(path, limit)
+}
+
+func openBolt(path string, limit int) (*bolt.DB, error) {
 	db, err := bolt.Open(path, fileMode, boltOptions(limit))
 	if err != nil {
 		return nil, openError(err)
@@ -230,9 +234,9 @@ func create(path string) error {
 	if err := os.Remove(temp); err != nil && !errors.Is(err, fs.ErrNotExist) {
 		return err
 	}
-	db, err := bolt.Open(temp, fileMode, boltOptions(0))
+	db, err := openBolt(temp, 0)
 	if err != nil {
-		return openError(err)
+		return err
 	}
 	if err := errors.Join(db.Update(layOut), db.Close()); err != nil {
 		return err

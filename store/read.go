@@ -2,6 +2,7 @@ package store
 
 import (
 	"encoding/binary"
+	"errors"
 	"fmt"
 	"iter"
 	"math"
@@ -70,9 +71,11 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 			return c, false, err
 		}
 		if *after > 0 && head.first > *after+1 {
-			err = s.damage("group", k, fmt.Errorf("records %d to %d are missing before it", *after+1, head.first-1))
+			missing := fmt.Errorf("records %d to %d are missing before it", *after+1, head.first-1)
 			*after = head.first - 1
-			return c, false, err
+			if trimmed, err := s.trimmed(tx, head.first); err != nil || !trimmed {
+				return c, false, errors.Join(err, s.damage("group", k, missing))
+			}
 		}
 		fresh := head.last > *after
 		*after = max(*after, head.last)
@@ -86,6 +89,16 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 		k, _ = cursor.Next()
 	}
 	return c, false, nil
+}
+
+// trimmed tells whether retention may have removed the record before first.
+func (s *Store) trimmed(tx *bolt.Tx, first uint64) (bool, error) {
+	mark, err := s.checkpoint(tx)
+	if err != nil {
+		return false, err
+	}
+	k, _ := tx.Bucket(bucketJournal).Cursor().First()
+	return len(k) >= 8 && binary.BigEndian.Uint64(k) == first && first-1 < mark.seq, nil
 }
 
 // seekGroup finds the group with record seq, or the first one after it.

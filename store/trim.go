@@ -3,11 +3,14 @@ package store
 import (
 	"bytes"
 	"encoding/binary"
+	"errors"
 	"fmt"
 	"math"
 
 	bolt "go.etcd.io/bbolt"
 )
+
+var errNothing = errors.New("nothing to remove")
 
 const (
 	// groupsATrim and minutesATrim bound what one transaction deletes.
@@ -60,8 +63,14 @@ func (s *Store) Trim(now int64) (Trimmed, error) {
 			done := t
 			err := s.update(func(tx *bolt.Tx) (err error) {
 				more, err = remove(tx, old, s.used.Load()-bound, &done)
+				if err == nil && done == t {
+					return errNothing // an empty transaction would write pages as well
+				}
 				return err
 			})
+			if err == errNothing {
+				break
+			}
 			if err != nil {
 				return t, fmt.Errorf("trim history %q: %w", s.path, err)
 			}
@@ -130,22 +139,23 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 	if over {
 		excess += int64(s.db.Info().PageSize) // room comes by whole pages
 	}
-	c := tx.Bucket(bucketMinutes).Cursor()
-	k, v := c.Seek(keyFirstMinute)
-	for range minutesATrim {
-		if k == nil {
-			return false, nil
-		}
+	minutes := tx.Bucket(bucketMinutes)
+	var keys [][]byte
+	c := minutes.Cursor()
+	for k, v := c.Seek(keyFirstMinute); k != nil && len(keys) < minutesATrim; k, v = c.Next() {
 		start := int64(binary.BigEndian.Uint64(k) ^ 1<<63)
 		if start >= old && excess <= 0 {
-			return over, nil
+			break
 		}
 		excess -= int64(len(k) + len(v) + perKey)
-		t.Minutes++
-		if err := c.Delete(); err != nil {
+		keys = append(keys, bytes.Clone(k))
+	}
+	// Not with the cursor: after its Delete, Next may give the deleted key again.
+	for _, k := range keys {
+		if err := minutes.Delete(k); err != nil {
 			return false, err
 		}
-		k, v = c.Next()
 	}
-	return true, nil
+	t.Minutes += int64(len(keys))
+	return len(keys) > 0 && (over || len(keys) == minutesATrim), nil
 }

@@ -1,0 +1,280 @@
+package store
+
+import (
+	"log/slog"
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+	"time"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+const day = 86_400 * second
+
+// fill commits two hours of 5 tags and some loads in each batch, from one time
+// to another, with a checkpoint each, and trims after each.
+func fill(t testing.TB, s *Store, from, to int64, loads uint32, after func(at int64)) (removed Trimmed) {
+	t.Helper()
+	for at := from; at < to; at += 7200 * second {
+		b := Batch{Beats: plant(at, 7200, 5), Checkpoint: []byte("state")}
+		for minute := range int64(120) {
+			for load := range loads {
+				v := math.Sqrt(float64(at/second + minute))
+				b.Minutes = append(b.Minutes, Minute{Load: load, Start: at + minute*60*second, Measured: 60, Given: v, Duty: v / 60, Inlet: 280 + v/1e5})
+			}
+		}
+		b.Registers = []Register{{Load: 1, Given: float64(at)}}
+		commit(t, s, b)
+		got, err := s.Trim(at + 7200*second)
+		if err != nil {
+			t.Fatal(err)
+		}
+		removed.Readings += got.Readings
+		removed.Minutes += got.Minutes
+		if got.Damaged != 0 {
+			t.Errorf("%d damaged groups", got.Damaged)
+		}
+		after(at + 7200*second)
+	}
+	return removed
+}
+
+func countReadings(t testing.TB, s *Store) (n int64, oldest int64) {
+	t.Helper()
+	oldest = math.MaxInt64
+	for b, err := range s.beats(0, math.MaxUint64, every) {
+		if err != nil {
+			t.Fatal(err)
+		}
+		n += int64(len(b.Readings))
+		for _, r := range b.Readings {
+			oldest = min(oldest, r.At)
+		}
+	}
+	return n, oldest
+}
+
+// TestTrimByAge fills three months and keeps one.
+func TestTrimByAge(t *testing.T) {
+	s := newStore(t, Options{MaxAge: 30 * 24 * time.Hour})
+	const from, days = 20_000 * day, 90
+	removed := fill(t, s, from, from+days*day, 3, func(int64) {})
+	end := int64(from + days*day)
+	readings, oldest := countReadings(t, s)
+	if want := int64(days * 86_400 * 5 / 10); readings+removed.Readings != want {
+		t.Errorf("%d readings kept, %d removed; want %d together", readings, removed.Readings, want)
+	}
+	// A group holds half a day or so of these.
+	if oldest < end-32*day || oldest > end-30*day {
+		t.Errorf("the oldest reading is %.2f days old, want 30 to 32", float64(end-oldest)/day)
+	}
+	minutes := drain(t, s.Minutes(0, math.MinInt64, math.MaxInt64))
+	if len(minutes) != 30*1440 || minutes[0].Start != end-30*day {
+		t.Errorf("%d minutes, the oldest %.2f days old; want 30 days of them", len(minutes), float64(end-minutes[0].Start)/day)
+	}
+	if want := int64((days - 30) * 1440 * 3); removed.Minutes != want {
+		t.Errorf("%d minutes removed, want %d", removed.Minutes, want)
+	}
+}
+
+// TestTrimByBytes fills four months: the bound holds after every trim, the file is
+// not much longer, and readings go before minutes.
+func TestTrimByBytes(t *testing.T) {
+	const bound = 20 << 20
+	path := filepath.Join(t.TempDir(), "history.db")
+	s := openStore(t, path, Options{MaxBytes: bound})
+	const from, days = 20_000 * day, 120
+	worst := int64(0)
+	removed := fill(t, s, from, from+days*day, 1, func(at int64) {
+		if s.Bytes() > bound {
+			t.Fatalf("day %d: %d bytes in use, bound %d", (at-from)/day, s.Bytes(), bound)
+		}
+		info, err := os.Stat(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		worst = max(worst, info.Size())
+	})
+	if worst > bound*3/2 {
+		t.Errorf("the file grew to %d bytes, bound %d", worst, bound)
+	}
+	readings, _ := countReadings(t, s)
+	if readings == 0 || removed.Readings == 0 {
+		t.Errorf("%d readings kept, %d removed", readings, removed.Readings)
+	}
+	minutes := drain(t, s.Minutes(0, math.MinInt64, math.MaxInt64))
+	if removed.Minutes != 0 || len(minutes) != days*1440 {
+		t.Errorf("%d minutes removed, %d of a load kept; readings were left to remove", removed.Minutes, len(minutes))
+	}
+}
+
+// TestTrimMinutesLast gives less room than the minutes need.
+func TestTrimMinutesLast(t *testing.T) {
+	const bound = 3 << 20
+	s := newStore(t, Options{MaxBytes: bound})
+	const from, days = 20_000 * day, 40
+	removed := fill(t, s, from, from+days*day, 3, func(int64) {
+		if s.Bytes() > bound {
+			t.Fatalf("%d bytes in use, bound %d", s.Bytes(), bound)
+		}
+	})
+	minutes := drain(t, s.Minutes(0, math.MinInt64, math.MaxInt64))
+	if len(minutes) == 0 || removed.Minutes == 0 || int(removed.Minutes)+3*len(minutes) != days*1440*3 {
+		t.Errorf("%d minutes removed, %d of a load kept", removed.Minutes, len(minutes))
+	}
+	if last := minutes[len(minutes)-1].Start; last != from+days*day-60*second {
+		t.Errorf("the newest minute is missing: %d", last)
+	}
+	registers, err := s.Registers()
+	if err != nil || len(registers) != 1 || registers[0].Given != from+days*day-7200*second {
+		t.Errorf("Registers() = %v, %v", registers, err)
+	}
+}
+
+// TestTrimKeepsReplay never checkpoints again: what a restart needs stays, however
+// little room there is.
+func TestTrimKeepsReplay(t *testing.T) {
+	s := newStore(t, Options{MaxBytes: 1 << 20, MaxAge: time.Hour})
+	commit(t, s, Batch{Beats: plant(0, 10, 50), Checkpoint: []byte("state")})
+	var want []Beat
+	for at := int64(10); at < 40_000; at += 100 {
+		b := Batch{Beats: plant(at*second, 100, 50)}
+		want = append(want, b.Beats...)
+		commit(t, s, b)
+	}
+	if _, err := s.Trim(1000 * day); err != nil {
+		t.Fatal(err)
+	}
+	if got := drain(t, s.Since()); !sameBeats(got, want) {
+		t.Errorf("%d beats since the checkpoint, want %d", len(got), len(want))
+	}
+}
+
+// TestCompact removes nearly all and opens again: the file is short, and the rest
+// is there.
+func TestCompact(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "history.db")
+	s, err := Open(path, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	const from = 20_000 * day
+	fill(t, s, from, from+90*day, 3, func(int64) {})
+	s.maxAge = 24 * time.Hour
+	if _, err := s.Trim(from + 90*day); err != nil {
+		t.Fatal(err)
+	}
+	before := contents(t, s)
+	if err := s.Close(); err != nil {
+		t.Fatal(err)
+	}
+	long, err := os.Stat(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var log strings.Builder
+	s = openStore(t, path, Options{Log: slog.New(slog.NewTextHandler(&log, nil))})
+	short, err := os.Stat(path)
+	if err != nil || short.Size() > long.Size()/4 || short.Size() > 4<<20 {
+		t.Errorf("%d bytes after compaction, %d before (%v)", short.Size(), long.Size(), err)
+	}
+	if !strings.Contains(log.String(), "history compacted") {
+		t.Errorf("the log does not tell: %q", log.String())
+	}
+	if after := contents(t, s); after != before {
+		t.Errorf("after compaction %+v, before %+v", after, before)
+	}
+	commit(t, s, Batch{Beats: plant(from+90*day, 3600, 50)})
+}
+
+type content struct {
+	readings, oldest int64
+	minutes          int
+	given            float64
+	state            string
+}
+
+func contents(t *testing.T, s *Store) (c content) {
+	t.Helper()
+	c.readings, c.oldest = countReadings(t, s)
+	c.minutes = len(drain(t, s.Minutes(0, math.MinInt64, math.MaxInt64)))
+	registers, err := s.Registers()
+	if err != nil || len(registers) != 1 {
+		t.Fatalf("Registers() = %v, %v", registers, err)
+	}
+	state, _, err := s.Checkpoint()
+	if err != nil {
+		t.Fatal(err)
+	}
+	c.given, c.state = registers[0].Given, string(state)
+	return c
+}
+
+// TestFull fills the file to its greatest size. Commit says so, keeps nothing of the
+// batch and goes on after a Trim, again and again, with all that is newer than
+// the oldest kept.
+func TestFull(t *testing.T) {
+	s := newStore(t, Options{MaxBytes: 1 << 40, MaxFile: 6 << 20})
+	full := 0
+	for n := uint64(1); n <= 3000 || full < 3; n++ {
+		if n > 60_000 {
+			t.Fatalf("full only %d times", full)
+		}
+		b := Batch{Beats: plant(int64(n)*100*second, 100, 50), Checkpoint: []byte{1},
+			Registers: []Register{{Load: 1, Given: float64(n)}}}
+		err := s.Commit(b)
+		if err == nil {
+			continue
+		}
+		if !IsFull(err) {
+			t.Fatalf("batch %d: %v, which IsFull does not know", n, err)
+		}
+		full++
+		registers, rerr := s.Registers()
+		if rerr != nil || registers[0].Given != float64(n-1) {
+			t.Fatalf("batch %d was refused, the register is %v, %v", n, registers, rerr)
+		}
+		removed, err := s.Trim(int64(n) * 100 * second)
+		if err != nil || removed.Readings == 0 {
+			t.Fatalf("Trim() = %+v, %v", removed, err)
+		}
+		commit(t, s, b)
+	}
+	readings, oldest := countReadings(t, s)
+	registers, err := s.Registers()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if want := (int64(registers[0].Given)+1)*100*5 - oldest/second*5; readings != want {
+		t.Errorf("%d readings from %d s on, want %d", readings, oldest/second, want)
+	}
+}
+
+// TestRootStaysOnePage commits all there is in any number of loads. Only while the
+// root is one page does a small commit write two.
+func TestRootStaysOnePage(t *testing.T) {
+	s := newStore(t, Options{})
+	for n := range uint64(60) {
+		if _, err := s.ID("load", strings.Repeat("x", int(n)*3)); err != nil {
+			t.Fatal(err)
+		}
+		for i := range int64(20) {
+			at := (int64(n)*20 + i) * 10 * second
+			commit(t, s, Batch{Beats: plant(at, 10, 50), Registers: []Register{{Load: uint32(n), Given: 1}},
+				Minutes: []Minute{{Load: uint32(n), Start: at, Duty: 1}}, Checkpoint: make([]byte, 20*i)})
+		}
+		err := s.db.Update(func(tx *bolt.Tx) error {
+			p, err := tx.Page(int(tx.Cursor().Bucket().Root()))
+			if err != nil || p.Type != "leaf" || p.OverflowCount != 0 {
+				t.Errorf("with %d registers the root is %+v, %v", n+1, p, err)
+			}
+			return err
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
+	}
+}
