@@ -162,6 +162,14 @@ func atTime(stamp string) func(*rand.Rand) string {
 	return func(r *rand.Rand) string { return fmt.Sprintf(`{"v":%d,"t":%s}`, 20+r.IntN(60), stamp) }
 }
 
+func timed(format string) func() Tag {
+	return func() Tag {
+		tag := celsius()
+		tag.TimeFormat = format
+		return tag
+	}
+}
+
 var badKinds = []badKind{
 	{"no bytes", bare, Empty, text("")},
 	{"blanks", celsius, Empty, text(" \r\n\t")},
@@ -223,6 +231,12 @@ var badKinds = []badKind{
 	{"long stamp", celsius, TimeWrong, atTime(`"2026-03-29T00:59:00.` + strings.Repeat("0", 99) + `Z"`)},
 	{"nanoseconds", celsius, TimeWrong, atTime("1774745940000000000")},
 	{"endless stamp", celsius, TimeWrong, atTime("1e999")},
+	{"number where RFC 3339 is asked for", timed(TimeRFC3339), TimeWrong, atTime("1774745940")},
+	{"text where seconds are asked for", timed(TimeSeconds), TimeWrong, atTime(`"2026-03-29T00:59:00Z"`)},
+	{"microseconds where seconds are asked for", timed(TimeSeconds), TimeWrong, atTime("1774745940123456")},
+	{"far future in seconds", timed(TimeSeconds), Ahead, atTime("9000000000")},
+	{"seconds where milliseconds are asked for", timed(TimeMillis), UnsetClock, atTime("1774745940")},
+	{"list as a stamp", celsius, TimeWrong, atTime("[1774745940]")},
 	{"1970", celsius, UnsetClock, func(r *rand.Rand) string { return atTime(fmt.Sprint(r.IntN(1e6)))(r) }},
 	{"before 1970", celsius, UnsetClock, atTime("-1")},
 	{"1970 as text", celsius, UnsetClock, atTime(`"1970-01-01T00:00:12Z"`)},
@@ -236,17 +250,19 @@ var badKinds = []badKind{
 
 func TestBadMessages(t *testing.T) {
 	const messages = 1000
-	tags := []Tag{celsius(), bare()}
-	d, err := NewDecoder(tags, 0)
-	if err != nil {
-		t.Fatal(err)
+	decoders := make([]*Decoder, len(badKinds)) // each serves many messages
+	for i, kind := range badKinds {
+		var err error
+		if decoders[i], err = NewDecoder([]Tag{kind.tag()}, 0); err != nil {
+			t.Fatal(err)
+		}
 	}
 	r := rand.New(rand.NewPCG(1, 2))
 	var got, want Counts
 	for i := range messages {
 		kind := badKinds[i%len(badKinds)]
 		payload := kind.make(r)
-		out, _ := d.Decode(kind.tag().Topic, []byte(payload), arrival, false, nil)
+		out, _ := decoders[i%len(badKinds)].Decode(kind.tag().Topic, []byte(payload), arrival, false, nil)
 		if len(out) != 1 || out[0].Refusal == nil {
 			t.Fatalf("%s: payload %.200q was not refused: %+v", kind.name, payload, out)
 		}
