@@ -101,6 +101,10 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 // work runs the three parts. The session outlives the beat, so that the last
 // acknowledgements still go out.
 func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener) error {
+	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
+	if a.o.Ready != nil {
+		a.o.Ready(listener.Addr())
+	}
 	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
 	defer endSession()
 	g, ctx := errgroup.WithContext(ctx)
@@ -110,10 +114,6 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener) 
 		return a.beats(ctx, books)
 	})
 	g.Go(func() error { return serve(ctx, listener, handler(a.registry(), &a.health, a.o.Log)) })
-	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
-	if a.o.Ready != nil {
-		a.o.Ready(listener.Addr())
-	}
 	return g.Wait()
 }
 

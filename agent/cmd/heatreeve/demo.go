@@ -1,0 +1,114 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"log/slog"
+	"net"
+	"os"
+	"time"
+
+	"golang.org/x/sync/errgroup"
+	"golang.org/x/term"
+
+	"heatreeve/agent"
+	"heatreeve/agent/demo"
+	"heatreeve/agent/view"
+)
+
+func runDemo(ctx context.Context, c *call) error {
+	data := c.flags.String("data", "", "`DIR` that keeps the history; without it, the history is thrown away at the end")
+	listen := c.flags.String("listen", defaultListen, "`ADDR` of metrics and health, host:port")
+	length := c.flags.Duration("for", 0, "end by itself after `DURATION`, such as 10s or 5m")
+	speed := c.flags.Float64("speed", 1, fmt.Sprintf("run the plant `N` times faster, 1 to %d", demo.MaxSpeed))
+	if err := c.parse(0, ""); err != nil {
+		return err
+	}
+	if !(*speed >= 1 && *speed <= demo.MaxSpeed) {
+		return wrongf("heatreeve demo: --speed %g: allowed are 1 to %d", *speed, demo.MaxSpeed)
+	}
+	if *length < 0 {
+		return wrongf("heatreeve demo: --for %s is not a length of time", *length)
+	}
+	if *length > 0 {
+		var cancel context.CancelFunc
+		ctx, cancel = context.WithTimeout(ctx, *length)
+		defer cancel()
+	}
+	if *data == "" {
+		dir, err := os.MkdirTemp("", "heatreeve-demo-")
+		if err != nil {
+			return err
+		}
+		defer os.RemoveAll(dir)
+		*data = dir
+	}
+	return c.demo(ctx, *data, *listen, *speed)
+}
+
+// demo runs plant, broker and agent until ctx ends.
+func (c *call) demo(ctx context.Context, data, listen string, speed float64) error {
+	before, err := agent.EventTime(data)
+	if err != nil {
+		return err
+	}
+	log := c.demoLog()
+	d, err := demo.Start(demo.Options{Speed: speed, After: before, Log: log})
+	if err != nil {
+		return err
+	}
+	defer d.Close()
+	display := c.display(d)
+	a, err := agent.New(d.Site, agent.Options{
+		Data: data, Listen: listen, Version: version, Log: log, Now: d.Clock.Now,
+		Ready: func(at net.Addr) {
+			fmt.Fprintf(c.stdout, "%s, an invented plant, on a broker of its own at %s\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n%s\n\n", d.Site.Name, d.Broker.URL(), at, at, agent.Safety)
+		},
+		Beat: func(s *view.Snapshot) {
+			if s.At != 0 { // something has come
+				display.Show(s)
+			}
+		},
+	})
+	if err != nil {
+		return err
+	}
+	g, ctx := errgroup.WithContext(ctx)
+	g.Go(func() error { return a.Run(ctx) })
+	g.Go(func() error { return d.Run(ctx) })
+	return g.Wait()
+}
+
+// display is the table of the loads: drawn over in a terminal, and from time to
+// time elsewhere.
+func (c *call) display(d *demo.Demo) *demo.Display {
+	o := demo.DisplayOptions{Table: demo.TableOptions{Zone: d.Site.Zone, Notice: agent.Safety}, Every: 10 * time.Second}
+	if fd, ok := terminal(c.stdout); ok {
+		o.Terminal, o.Every, o.Table.Colour = true, 0, os.Getenv("NO_COLOR") == ""
+		o.Width = func() int {
+			width, _, err := term.GetSize(fd)
+			if err != nil {
+				return 80
+			}
+			return width
+		}
+	}
+	return demo.NewDisplay(c.stdout, o)
+}
+
+// demoLog is silent in a terminal, where it would run through the table.
+func (c *call) demoLog() *slog.Logger {
+	if _, ok := terminal(c.stderr); ok {
+		return slog.New(slog.DiscardHandler)
+	}
+	return slog.New(slog.NewTextHandler(c.stderr, nil))
+}
+
+func terminal(w io.Writer) (fd int, ok bool) {
+	f, ok := w.(*os.File)
+	if !ok {
+		return 0, false
+	}
+	return int(f.Fd()), term.IsTerminal(int(f.Fd()))
+}

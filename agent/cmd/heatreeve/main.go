@@ -1,0 +1,108 @@
+// Command heatreeve turns a plant's MQTT temperature, flow and pressure tags into
+// live sensible heat loads.
+package main
+
+import (
+	"context"
+	"errors"
+	"flag"
+	"fmt"
+	"io"
+	"os"
+	"os/signal"
+	"syscall"
+
+	"heatreeve/agent"
+	"heatreeve/agent/site"
+)
+
+// Exit statuses.
+const (
+	exitGood   = 0
+	exitFailed = 1
+	exitWrong  = 2 // wrong usage, or a wrong file
+)
+
+func main() {
+	os.Exit(run(context.Background(), os.Args[1:], os.Stdout, os.Stderr))
+}
+
+// command is one word of the command line.
+type command struct {
+	name    string
+	operand string // as in the usage line
+	about   string
+	run     func(ctx context.Context, c *call) error
+}
+
+var commands = []command{
+	{"run", "--site FILE --data DIR [--listen ADDR]", "run the agent on a plant", runAgent},
+	{"check", "FILE", "check a site file and tell every fault in it", runCheck},
+	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", runDemo},
+	{"version", "", "tell the version", runVersion},
+}
+
+// call is one invocation of a command.
+type call struct {
+	command
+	args           []string
+	stdout, stderr io.Writer
+	flags          *flag.FlagSet
+}
+
+// usageError is a fault of the command line or of a file named on it.
+type usageError struct{ error }
+
+func wrongf(format string, args ...any) error { return usageError{fmt.Errorf(format, args...)} }
+
+// run is the program but for the exit: it returns the status.
+func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
+	ctx, stop := signal.NotifyContext(ctx, os.Interrupt, syscall.SIGTERM)
+	defer stop()
+	context.AfterFunc(ctx, stop) // after the first signal, a second one kills at once
+	if len(args) == 0 || args[0] == "help" || args[0] == "-h" || args[0] == "--help" {
+		usage(stdout)
+		if len(args) == 0 {
+			return exitWrong
+		}
+		return exitGood
+	}
+	for _, c := range commands {
+		if c.name == args[0] {
+			return status(c.invoke(ctx, args[1:], stdout, stderr), stderr)
+		}
+	}
+	return status(wrongf("unknown command %q; known: run, check, demo, version, help", args[0]), stderr)
+}
+
+func (c command) invoke(ctx context.Context, args []string, stdout, stderr io.Writer) error {
+	f := flag.NewFlagSet("heatreeve "+c.name, flag.ContinueOnError)
+	f.SetOutput(io.Discard)
+	f.Usage = func() {}
+	return c.run(ctx, &call{command: c, args: args, stdout: stdout, stderr: stderr, flags: f})
+}
+
+func status(err error, stderr io.Writer) int {
+	var usage usageError
+	var faults site.Faults
+	switch {
+	case err == nil, errors.Is(err, flag.ErrHelp):
+		return exitGood
+	case errors.As(err, &faults):
+		fmt.Fprintln(stderr, faults)
+		return exitWrong
+	case errors.As(err, &usage):
+		fmt.Fprintln(stderr, "error:", err)
+		return exitWrong
+	}
+	fmt.Fprintln(stderr, "error:", err)
+	return exitFailed
+}
+
+func usage(w io.Writer) {
+	fmt.Fprint(w, "heatreeve turns MQTT temperature, flow and pressure tags into live sensible heat loads.\n\n")
+	for _, c := range commands {
+		fmt.Fprintf(w, "  heatreeve %s %s\n        %s\n", c.name, c.operand, c.about)
+	}
+	fmt.Fprintf(w, "\n  heatreeve COMMAND --help tells the options of one.\n\nExit status: 0 good, 1 failed, 2 wrong usage or wrong file.\n\n%s\n", agent.Safety)
+}

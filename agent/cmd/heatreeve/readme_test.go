@@ -1,0 +1,96 @@
+package main
+
+import (
+	"os"
+	"regexp"
+	"slices"
+	"strings"
+	"testing"
+
+	"github.com/prometheus/client_golang/prometheus"
+
+	"heatreeve/agent"
+	"heatreeve/agent/metrics"
+	"heatreeve/agent/site"
+	"heatreeve/configs"
+)
+
+func readme(t *testing.T) string {
+	t.Helper()
+	text, err := os.ReadFile("../../../README.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(text)
+}
+
+// The metrics that the README names are those that there are.
+func TestReadmeNamesTheMetrics(t *testing.T) {
+	descs := make(chan *prometheus.Desc, 100)
+	metrics.NewCollector(nil, nil).Describe(descs)
+	metrics.BuildInfo("").Describe(descs)
+	metrics.CommitSeconds().Describe(descs)
+	close(descs)
+	name := regexp.MustCompile(`fqName: "(\w+)"`)
+	var have []string
+	for d := range descs {
+		have = append(have, name.FindStringSubmatch(d.String())[1])
+	}
+	said := regexp.MustCompile("`(heatreeve_[a-z_]+)`").FindAllStringSubmatch(readme(t), -1)
+	var want []string
+	for _, m := range said {
+		want = append(want, m[1])
+	}
+	slices.Sort(have)
+	slices.Sort(want)
+	want = slices.Compact(want)
+	if !slices.Equal(have, want) {
+		t.Errorf("the program has %v,\nthe README names %v", have, want)
+	}
+}
+
+// The site file in the README is good, and is the demo's in short.
+func TestReadmeSiteFileIsGood(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "```yaml\n")
+	text, _, closed := strings.Cut(rest, "```")
+	if !ok || !closed {
+		t.Fatal("the README shows no site file")
+	}
+	s, err := site.Parse("README.md", []byte(text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	demo, err := site.Parse(configs.DemoName, configs.Demo)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if s.Name != demo.Name || s.Loads[0].Name != demo.Loads[0].Name || s.Loads[0].Design.Duty != demo.Loads[0].Design.Duty {
+		t.Errorf("README shows %q with %q, the demo's file is %q with %q", s.Name, s.Loads[0].Name, demo.Name, demo.Loads[0].Name)
+	}
+}
+
+// The commands and the address in the README are those of the program, and the
+// safety line stands in it.
+func TestReadmeAgreesWithTheProgram(t *testing.T) {
+	text := readme(t)
+	flat := strings.Join(strings.Fields(strings.ReplaceAll(text, "> ", "")), " ")
+	for _, want := range []string{"`" + defaultListen + "`", agent.Safety} {
+		if !strings.Contains(flat, want) {
+			t.Errorf("the README does not say %q", want)
+		}
+	}
+	known := make(map[string]bool)
+	for _, c := range commands {
+		known[c.name] = true
+	}
+	for _, m := range regexp.MustCompile("`heatreeve (\\w+)").FindAllStringSubmatch(text, -1) {
+		if !known[m[1]] {
+			t.Errorf("the README names the command %q", m[1])
+		}
+	}
+	for _, path := range regexp.MustCompile(`\]\(([^)#]+)\)`).FindAllStringSubmatch(text, -1) {
+		if _, err := os.Stat("../../../" + path[1]); err != nil {
+			t.Errorf("the README points at %q, which is not there", path[1])
+		}
+	}
+}
