@@ -10,13 +10,14 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/site"
+	"heatreeve/configs"
 	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
 )
 
 func creamery(t testing.TB) *site.Site {
 	t.Helper()
-	s, err := site.Load("../../configs/brackwater-creamery.yaml")
+	s, err := site.Parse(configs.DemoName, configs.Demo)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -99,7 +100,18 @@ func heat(t *testing.T, l *site.HeatLoad, x [5]float64) float64 {
 // The duty worked from what is published is the true one but for noise and
 // rounding, whose bound is worked input by input; over two days they average out.
 func TestPublishedSignalsCarryTheTrueDuty(t *testing.T) {
-	s := creamery(t)
+	t.Run("as the site is", func(t *testing.T) { carryTheTrueDuty(t, creamery(t)) })
+	t.Run("meter at the outlet", func(t *testing.T) {
+		s := creamery(t)
+		for i := range s.Loads {
+			s.Loads[i].Stream.MeterAtOutlet = true
+		}
+		carryTheTrueDuty(t, s)
+	})
+}
+
+func carryTheTrueDuty(t *testing.T, s *site.Site) {
+	t.Helper()
 	p := newPlant(t, s, 7)
 	for i := range s.Loads {
 		l := &s.Loads[i]
@@ -170,6 +182,8 @@ func TestTheDayGoesAsTold(t *testing.T) {
 		{"hot-water", 7 * time.Hour, 0.92, 0.97, "fouling, and within the allowance"},
 		{"hot-water", 8*time.Hour + 30*time.Minute, 0.87, 0.92, "fouled beyond the allowance"},
 		{"hot-water", 16 * time.Hour, 0.82, 0.86, "fouled"},
+		{"hot-water", 19 * time.Hour, 0.37, 0.385, "night, fouled"},
+		{"hot-water", 23 * time.Hour, 0.44, 0.46, "night, cleaned"},
 		{"hot-water", 25 * time.Hour, 0.98, 1.02, "cleaned, the next day"},
 		{"dryer-air", 0, 0.58, 0.62, "night"},
 		{"dryer-air", 45 * time.Minute, 0.75, 0.85, "half of the ramp"},
@@ -181,6 +195,41 @@ func TestTheDayGoesAsTold(t *testing.T) {
 		if share := dutyAt(t, p, tt.load, tt.at) / design[tt.load]; share < tt.least || share > tt.most {
 			t.Errorf("%s after %v (%s): %.3f of its design duty, want %g to %g", tt.load, tt.at, tt.meaning, share, tt.least, tt.most)
 		}
+	}
+}
+
+// A meter whose error has a part that does not vanish with the flow still shows
+// zero where nothing flows.
+func TestStoppedPumpShowsNoFlow(t *testing.T) {
+	s := creamery(t)
+	flow := s.Loads[1].Stream.Flow.Tag
+	s.Tags[flow].Accuracy.Abs = s.Tags[flow].Scale
+	p := newPlant(t, s, 7)
+	for at := stopBegins; at < stopEnds; at += time.Minute {
+		if x := samplesAt(t, p, at)[flow]; x.Value != 0 || x.Condition != Sends {
+			t.Errorf("after %v: %+v, want a flow of 0", at, x)
+		}
+	}
+}
+
+// The sum of three even draws: within its bound, around zero, and with a standard
+// deviation of a third.
+func TestNoise(t *testing.T) {
+	const n = 100_000
+	x := signal{key: noiseKey(7, "TT-201")}
+	var sum, squares float64
+	for i := range n {
+		v := x.noise(time.Duration(i) * time.Second)
+		if math.Abs(v) > 1 {
+			t.Fatalf("noise of %g, want at most 1", v)
+		}
+		sum, squares = sum+v, squares+v*v
+	}
+	if mean, deviation := sum/n, math.Sqrt(squares/n); math.Abs(mean) > 0.005 || math.Abs(deviation-1.0/3) > 0.005 {
+		t.Errorf("noise has mean %.4f and standard deviation %.4f, want 0 and 0.3333", mean, deviation)
+	}
+	if x.noise(1500*time.Millisecond) != x.noise(time.Second) {
+		t.Error("noise changes within a second")
 	}
 }
 

@@ -99,8 +99,9 @@ func TestTableFitsEveryWidth(t *testing.T) {
 			}
 		}
 		for _, l := range picture().Loads {
-			if !regexp.MustCompile(`(?m)^` + l.Name + ` +` + l.Verdict.String()).MatchString(plain) {
-				t.Errorf("width %d: load %s has no line with its verdict %q", width, l.Name, l.Verdict)
+			line := regexp.MustCompile(`(?m)^` + l.Name + ` +` + l.Verdict.String() + ".*$").FindString(plain)
+			if line == "" || width >= 41 && strings.Contains(line, "…") {
+				t.Errorf("width %d: load %s has line %q, want its verdict %q, and columns left out before one is cut", width, l.Name, line, l.Verdict)
 			}
 		}
 		if words := strings.Fields(plain); !strings.Contains(strings.Join(words, " "), notice) {
