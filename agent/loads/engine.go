@@ -189,7 +189,7 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		if l.Minute.Begun && g >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}
-		l.book(g, span)
+		l.book(g, span, e.cfg.Loads[i].Stream.Gives)
 		if g+span >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}
@@ -204,9 +204,11 @@ func (l *loadState) closeMinute(load int, closed []Minute) []Minute {
 	return closed
 }
 
-func (l *loadState) book(g, span int64) {
+// book adds the present figure over span. The registers know which way the stream's
+// heat went; windows and duty are positive in the load's service.
+func (l *loadState) book(g, span int64, gives bool) {
 	f := &l.figure
-	l.Minute.book(f, g, span)
+	l.Minute.book(f, g, span, gives)
 	if !f.Measured() {
 		l.Registers.Missing += span
 		for k := range l.Windows {
@@ -215,8 +217,17 @@ func (l *loadState) book(g, span int64) {
 		return
 	}
 	heat := f.Duty * (float64(span) / 1e9)
-	l.Registers.book(heat, span)
+	l.Registers.book(givenUp(heat, gives), span)
 	for k := range l.Windows {
 		l.Windows[k].book(g, heat, span)
 	}
+}
+
+// givenUp turns heat that is positive in the load's service into heat that is
+// positive where the stream gave it up.
+func givenUp(heat float64, gives bool) float64 {
+	if gives {
+		return heat
+	}
+	return -heat
 }

@@ -118,24 +118,31 @@ func TestGapIsMissingAndInventsNothing(t *testing.T) {
 	near(t, "coverage of the hour", l.Means[2].Coverage, 1.0/60, 1e-3)
 }
 
+// Duty is positive in the load's own service; the registers tell which way the
+// stream's heat went, whatever the service.
 func TestSignsAndServices(t *testing.T) {
 	for _, tt := range []struct {
-		gives        bool
-		in, out      float64
-		given, taken float64
+		gives              bool
+		in, out            float64
+		duty, given, taken float64
 	}{
-		{true, 350, 330, 160e3, 0}, // a heating circuit that heats
-		{true, 330, 350, 0, 160e3}, // and one that is heated instead
-		{false, 280, 290, 80e3, 0}, // a chilled circuit that takes heat
-		{false, 290, 280, 0, 80e3},
+		{true, 350, 330, 160e3, 160e3, 0},  // a heating circuit that heats
+		{true, 330, 350, -160e3, 0, 160e3}, // and one that is heated instead
+		{false, 280, 290, 80e3, 0, 80e3},   // a chilled circuit that takes heat
+		{false, 290, 280, -80e3, 80e3, 0},
 	} {
 		cfg := plant(liquid)
 		cfg.Loads[0].Stream.Gives = tt.gives
 		e := engine(t, cfg)
-		e.Advance(Beat{at(0, 2, tt.in, tt.out), through(1)}, nil)
+		closed := e.Advance(Beat{at(0, 2, tt.in, tt.out), through(60)}, nil)
 		l := e.Snapshot().Loads[0]
-		near(t, "given", l.Given, tt.given, 1e-6)
-		near(t, "taken", l.Taken, tt.taken, 1e-6)
+		near(t, "duty", l.Figure.Duty, tt.duty, 1e-6)
+		near(t, "mean duty", l.Means[0].Duty, tt.duty, 1e-6)
+		near(t, "given", l.Given, 60*tt.given, 1e-6)
+		near(t, "taken", l.Taken, 60*tt.taken, 1e-6)
+		near(t, "duty of the minute", closed[0].Duty, tt.duty, 1e-6)
+		near(t, "given in the minute", closed[0].Given, 60*tt.given, 1e-6)
+		near(t, "taken in the minute", closed[0].Taken, 60*tt.taken, 1e-6)
 	}
 }
 

@@ -10,8 +10,8 @@ type Minute struct {
 	Start             int64 // first instant of the minute
 	Measured, Missing int64 // ns
 	Idle              int64 // ns, within Measured
-	Given, Taken      float64
-	Duty              float64 // mean, W
+	Given, Taken      float64 // J that the stream gave up, and took up
+	Duty              float64 // mean, W, positive in the load's service
 	DutyMin, DutyMax  float64 // of the grid's figures, W
 	Uncertainty       float64 // mean standard uncertainty, W
 	MassFlow          float64 // kg/s
@@ -26,7 +26,7 @@ type minuteSum struct {
 	Begun bool
 }
 
-func (m *minuteSum) book(f *Figure, g, span int64) {
+func (m *minuteSum) book(f *Figure, g, span int64, gives bool) {
 	s := &m.Sum
 	if !m.Begun {
 		*s = Minute{Start: floor(g, minute), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
@@ -38,10 +38,11 @@ func (m *minuteSum) book(f *Figure, g, span int64) {
 	}
 	dt := float64(span) / 1e9
 	s.Measured += span
-	if f.Duty >= 0 {
-		s.Given += f.Duty * dt
+	s.Duty += f.Duty * dt
+	if heat := givenUp(f.Duty*dt, gives); heat >= 0 {
+		s.Given += heat
 	} else {
-		s.Taken -= f.Duty * dt
+		s.Taken -= heat
 	}
 	s.DutyMin, s.DutyMax = min(s.DutyMin, f.Duty), max(s.DutyMax, f.Duty)
 	if f.Idle {
@@ -65,7 +66,7 @@ func (m *minuteSum) close(load int) (Minute, bool) {
 	}
 	s.Load = load
 	measured := float64(s.Measured) / 1e9
-	s.Duty = (s.Given - s.Taken) / measured
+	s.Duty /= measured
 	s.Uncertainty /= measured
 	s.MassFlow /= measured
 	if flowing := float64(s.Measured-s.Idle) / 1e9; flowing > 0 {

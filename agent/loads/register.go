@@ -28,6 +28,7 @@ type Registers struct {
 	Measured, Missing int64
 }
 
+// book adds heat in J, positive where the stream gave it up.
 func (r *Registers) book(heat float64, span int64) {
 	r.Measured += span
 	if heat >= 0 {

@@ -14,8 +14,6 @@ import (
 	"heatreeve/agent/view"
 )
 
-const zeroCelsius = 273.15 // K
-
 // windowNames are the label values of [loads.Windows].
 var windowNames = [len(loads.Windows)]string{"1m", "15m", "1h"}
 
@@ -28,7 +26,7 @@ var (
 	uncertainty = desc("load_duty_uncertainty_watts", "Standard uncertainty of the duty (coverage factor 1).", "load")
 	dutyMean    = desc("load_duty_mean_watts", "Rolling mean of the duty over the measured part of the window.", "load", "window")
 	coverage    = desc("load_coverage_ratio", "Part of the window that was measured, 0 to 1.", "load", "window")
-	heat        = desc("load_heat_joules_total", "Heat booked in one direction, as last committed to disk; survives restarts.", "load", "direction")
+	heat        = desc("load_heat_joules_total", "Heat that the stream gave up (given) or took up (taken), as last committed to disk; survives restarts.", "load", "direction")
 	spent       = desc("load_time_seconds_total", "Time accounted for, by kind, as last committed to disk; survives restarts.", "load", "kind")
 	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
 	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
@@ -114,8 +112,8 @@ func (o sink) figure(name string, f *loads.Figure) {
 	if f.Idle {
 		return
 	}
-	o.gauge(inlet, f.Inlet-zeroCelsius, name)
-	o.gauge(outlet, f.Outlet-zeroCelsius, name)
+	o.gauge(inlet, celsius(f.Inlet), name)
+	o.gauge(outlet, celsius(f.Outlet), name)
 }
 
 func (o sink) load(l *view.Load, now design.Verdict) {
@@ -168,6 +166,9 @@ func truth(b bool) float64 {
 	}
 	return 0
 }
+
+// celsius drops what the way over kelvins leaves beyond the sixth decimal.
+func celsius(kelvin float64) float64 { return math.Round((kelvin-273.15)*1e6) / 1e6 }
 
 // seconds keeps milliseconds, and no more digits than float64 holds.
 func seconds(ns int64) float64 { return math.Round(float64(ns)/1e6) / 1e3 }

@@ -85,7 +85,7 @@ heatreeve_tag_refused_total{reason="empty",tag="TT-1"} 3
 
 func TestRegisters(t *testing.T) {
 	want := `
-# HELP heatreeve_load_heat_joules_total Heat booked in one direction, as last committed to disk; survives restarts.
+# HELP heatreeve_load_heat_joules_total Heat that the stream gave up (given) or took up (taken), as last committed to disk; survives restarts.
 # TYPE heatreeve_load_heat_joules_total counter
 heatreeve_load_heat_joules_total{direction="given",load="dryer"} 0
 heatreeve_load_heat_joules_total{direction="given",load="hot-water"} 1.5e+09
