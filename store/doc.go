@@ -22,7 +22,7 @@
 //	recent     a bucket for each part of the open group, by the uint64 sequence
 //	           of its first record; in it "r" -> records
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
-//	minutes    int64 start, uint32 load -> a minute record
+//	minutes    int64 start, uint32 load / 32 -> minute records, CRC
 //	registers  "all" -> for each load, by number: uint32 load and 4 float64
 //	           (given, taken, measured, missing); CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
@@ -74,11 +74,13 @@
 // and readings is how many there are. The names are the only index by time:
 // a search looks at all of them, some fifty to a page.
 //
-// A minute record tells its 12 floats in the order of the fields of [Minute]
-// after Start: 6 bytes of 4-bit counts (low half first), the bytes of each float
-// XOR its forerunner without the zero bytes at the low end, high one first, then a
-// CRC. The forerunner is 0, but Duty for DutyMin and DutyMax, and Inlet for
-// Outlet. A count tells how many bytes there are.
+// Under one key of minutes lie those of up to 32 loads with one start, sorted by
+// load: for each, 1 byte with the remainder of load / 32, 6 bytes of 4-bit counts
+// (low half first) and the bytes of 12 floats, in the order of the fields of
+// [Minute] after Start. They end with a CRC. Of each float, XOR its forerunner,
+// those bytes are told that are left without zero bytes at the low end, high one
+// first; the count says how many. The forerunner is 0, but Duty for DutyMin and
+// DutyMax, and Inlet for Outlet.
 //
 // # Why in this shape
 //

@@ -2,12 +2,24 @@ package store
 
 import (
 	"encoding/binary"
+	"fmt"
+	"maps"
 	"math"
 	"math/bits"
+	"slices"
+	"sort"
+
+	bolt "go.etcd.io/bbolt"
 )
 
-// minuteFloats is how many floats a minute record holds.
-const minuteFloats = 12
+const (
+	// minuteFloats is how many floats a minute record holds.
+	minuteFloats = 12
+
+	// loadsAKey is how many loads share a key: those whose numbers are alike but
+	// for the remainder by it.
+	loadsAKey = 32
+)
 
 // floats lists the fields in the order in which they are stored.
 func (m *Minute) floats() [minuteFloats]*float64 {
@@ -23,11 +35,20 @@ func (m *Minute) floats() [minuteFloats]*float64 {
 var forerunner = [minuteFloats]int{-1, -1, -1, -1, -1, 4, 4, -1, -1, -1, 9, -1}
 
 func minuteKey(start int64, load uint32) []byte {
-	return binary.BigEndian.AppendUint32(timeKey(start), load)
+	return binary.BigEndian.AppendUint32(timeKey(start), load/loadsAKey)
 }
 
 // timeKey orders as t does.
 func timeKey(t int64) []byte { return binary.BigEndian.AppendUint64(nil, uint64(t)^1<<63) }
+
+// appendMinutes writes the minutes of one key, sorted by load.
+func appendMinutes(b []byte, key []byte, all []Minute) []byte {
+	begin := len(b)
+	for _, m := range all {
+		b = appendMinute(append(b, byte(m.Load%loadsAKey)), m)
+	}
+	return binary.LittleEndian.AppendUint32(b, checksum(key, b[begin:]))
+}
 
 func appendMinute(b []byte, m Minute) []byte {
 	begin := len(b)
@@ -45,39 +66,90 @@ func appendMinute(b []byte, m Minute) []byte {
 			word <<= 8
 		}
 	}
-	return binary.LittleEndian.AppendUint32(b, checksum(minuteKey(m.Start, m.Load), b[begin:]))
+	return b
 }
 
-func parseMinute(key, value []byte) (Minute, error) {
-	if len(key) != 12 || len(value) < minuteFloats/2+4 {
-		return Minute{}, errRecord
+func anyLoad(uint32) bool { return true }
+
+// parseMinutes adds to all the minutes under one key, of the loads that are wanted.
+func parseMinutes(all []Minute, key, value []byte, want func(load uint32) bool) ([]Minute, error) {
+	n := len(value) - 4
+	if len(key) != 12 || n < 0 || binary.LittleEndian.Uint32(value[n:]) != checksum(key, value[:n]) {
+		return all, errRecord
 	}
-	body, sum := value[:len(value)-4], value[len(value)-4:]
-	if binary.LittleEndian.Uint32(sum) != checksum(key, body) {
-		return Minute{}, errRecord
+	start := int64(binary.BigEndian.Uint64(key) ^ 1<<63)
+	block := binary.BigEndian.Uint32(key[8:])
+	for p := (parser{rest: value[:n]}); len(p.rest) > 0; {
+		rest := p.take(1)[0]
+		load := block*loadsAKey + uint32(rest)
+		head := p.take(minuteFloats / 2)
+		size := 0
+		for _, c := range head {
+			size += int(c&15) + int(c>>4)
+		}
+		body := p.take(uint64(size))
+		if p.bad || rest >= loadsAKey || block > math.MaxUint32/loadsAKey {
+			return all, errRecord
+		}
+		if want(load) {
+			m := Minute{Load: load, Start: start}
+			if !m.parse(head, body) {
+				return all, errRecord
+			}
+			all = append(all, m)
+		}
 	}
-	m := Minute{
-		Start: int64(binary.BigEndian.Uint64(key) ^ 1<<63),
-		Load:  binary.BigEndian.Uint32(key[8:]),
-	}
-	p := parser{rest: body[minuteFloats/2:]}
+	return all, nil
+}
+
+// parse reads the floats from their counts and bytes.
+func (m *Minute) parse(counts, body []byte) bool {
 	fields := m.floats()
 	for i, f := range fields {
-		count := body[i/2] >> (4 * (i % 2)) & 15
+		count := int(counts[i/2] >> (4 * (i % 2)) & 15)
 		if count > 8 {
-			return Minute{}, errRecord
+			return false
 		}
 		var word uint64
-		for k, c := range p.take(uint64(count)) {
+		for k, c := range body[:count] {
 			word |= uint64(c) << (56 - 8*k)
 		}
+		body = body[count:]
 		if j := forerunner[i]; j >= 0 {
 			word ^= math.Float64bits(*fields[j])
 		}
 		*f = math.Float64frombits(word)
 	}
-	if p.bad || len(p.rest) != 0 {
-		return Minute{}, errRecord
+	return true
+}
+
+// putMinutes replaces the minutes of the same load and start.
+func putMinutes(tx *bolt.Tx, changed []Minute) error {
+	bucket := tx.Bucket(bucketMinutes)
+	bucket.FillPercent = appendFill
+	byKey := map[string][]Minute{}
+	for _, m := range changed {
+		key := minuteKey(m.Start, m.Load)
+		all, ok := byKey[string(key)]
+		if !ok {
+			if old := bucket.Get(key); old != nil {
+				var err error
+				if all, err = parseMinutes(nil, key, old, anyLoad); err != nil {
+					return fmt.Errorf("%w: minute with key % x: %w", ErrDamaged, key, err)
+				}
+			}
+		}
+		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= m.Load })
+		if i == len(all) || all[i].Load != m.Load {
+			all = slices.Insert(all, i, m)
+		}
+		all[i] = m
+		byKey[string(key)] = all
 	}
-	return m, nil
+	for _, key := range slices.Sorted(maps.Keys(byKey)) {
+		if err := bucket.Put([]byte(key), appendMinutes(nil, []byte(key), byKey[key])); err != nil {
+			return err
+		}
+	}
+	return nil
 }

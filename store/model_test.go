@@ -106,7 +106,7 @@ func (m *model) compare(t *rapid.T, s *Store) {
 			want = append(want, x)
 		}
 	}
-	if !slices.EqualFunc(got, want, func(a, b Minute) bool { return minuteBits(a) == minuteBits(b) }) {
+	if !sameMinutes(got, want) {
 		t.Fatalf("Minutes: %v\nwant %v", got, want)
 	}
 	registers, err := s.Registers()

@@ -32,7 +32,8 @@ const (
 type pageCheck struct {
 	file     io.ReaderAt
 	pageSize int64
-	seen     []bool // by page
+	seen     []bool   // by page
+	spare    [][]byte // pages read before, to read others into
 }
 
 // checkPages checks what is reached from the root of tx in file, of length size.
@@ -51,7 +52,8 @@ func (c *pageCheck) page(id uint64, low, high []byte) error {
 	if id < 2 || id >= uint64(len(c.seen)) {
 		return fmt.Errorf("page %d does not exist", id)
 	}
-	p := page{file: c.file, offset: int64(id) * c.pageSize, first: make([]byte, c.pageSize)}
+	p := page{file: c.file, offset: int64(id) * c.pageSize, first: c.buffer()}
+	defer func() { c.spare = append(c.spare, p.first) }()
 	if _, err := c.file.ReadAt(p.first, p.offset); err != nil {
 		return fmt.Errorf("page %d: %w", id, err)
 	}
@@ -73,6 +75,15 @@ func (c *pageCheck) page(id uint64, low, high []byte) error {
 		return fmt.Errorf("page %d: %w", id, err)
 	}
 	return nil
+}
+
+func (c *pageCheck) buffer() []byte {
+	if n := len(c.spare); n > 0 {
+		b := c.spare[n-1]
+		c.spare = c.spare[:n-1]
+		return b
+	}
+	return make([]byte, c.pageSize)
 }
 
 // page is one page with what follows on it; first holds its beginning.

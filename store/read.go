@@ -1,6 +1,7 @@
 package store
 
 import (
+	"bytes"
 	"encoding/binary"
 	"errors"
 	"fmt"
@@ -15,7 +16,7 @@ import (
 // that it sees cannot be used again before it ends.
 const (
 	headersAView = 4096
-	minutesAView = 4096
+	minutesAView = 1024
 )
 
 func (s *Store) damage(what string, key []byte, err error) error {
@@ -84,7 +85,7 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 			if own == nil {
 				return c, false, s.damage("group", k, errRecord)
 			}
-			return chunk{head, append([]byte{}, own.Get(keyRecords)...)}, false, nil
+			return chunk{head, bytes.Clone(own.Get(keyRecords))}, false, nil
 		}
 		k, _ = cursor.Next()
 	}
@@ -266,36 +267,34 @@ func (s *Store) Readings(tag uint32, from, to int64) iter.Seq2[Reading, error] {
 }
 
 // Minutes yields the minutes of a load with from <= Start < to, by Start. The
-// store may be written to meanwhile. A damaged record is told as an error and
-// passed over, unless the caller stops.
+// store may be written to meanwhile. Damaged minutes are told as an error, after
+// those that lie near them, and passed over unless the caller stops.
 func (s *Store) Minutes(load uint32, from, to int64) iter.Seq2[Minute, error] {
 	return func(yield func(Minute, error) bool) {
 		key, end := timeKey(from), timeKey(to)
+		var found []Minute
 		for key != nil {
-			found, next, err := s.minutesFrom(key, end, load)
-			if err != nil {
-				yield(Minute{}, err)
-				return
-			}
-			for _, f := range found {
-				if !yield(f.minute, f.err) {
+			var faults []error
+			found, faults, key = s.minutesFrom(found[:0], key, end, load)
+			for _, m := range found {
+				if !yield(m, nil) {
 					return
 				}
 			}
-			key = next
+			for _, err := range faults {
+				if !yield(Minute{}, err) {
+					return
+				}
+			}
 		}
 	}
 }
 
-type foundMinute struct {
-	minute Minute
-	err    error
-}
-
-// minutesFrom looks at some records from key on. next is where to go on, nil at
-// the end.
-func (s *Store) minutesFrom(key, end []byte, load uint32) (found []foundMinute, next []byte, err error) {
-	err = s.view(func(tx *bolt.Tx) error {
+// minutesFrom adds to found from some keys, key being the first. next is where to go
+// on, nil at the end.
+func (s *Store) minutesFrom(found []Minute, key, end []byte, load uint32) (all []Minute, faults []error, next []byte) {
+	all = found
+	err := s.view(func(tx *bolt.Tx) error {
 		c := tx.Bucket(bucketMinutes).Cursor()
 		k, v := c.Seek(key)
 		if string(k) == string(keyPlaceholder) {
@@ -305,20 +304,17 @@ func (s *Store) minutesFrom(key, end []byte, load uint32) (found []foundMinute, 
 			if k == nil || string(k) >= string(end) {
 				return nil
 			}
-			// Those of other loads are read as well, for a damaged key may hide one
-			// of this load.
-			if m, err := parseMinute(k, v); err != nil {
-				found = append(found, foundMinute{err: s.damage("minute", k, err)})
-			} else if m.Load == load {
-				found = append(found, foundMinute{minute: m})
+			var err error
+			if all, err = parseMinutes(all, k, v, func(l uint32) bool { return l == load }); err != nil {
+				faults = append(faults, s.damage("minutes", k, err))
 			}
 			k, v = c.Next()
 		}
-		next = append([]byte{}, k...)
+		next = bytes.Clone(k)
 		return nil
 	})
-	if len(next) == 0 {
-		next = nil
+	if err != nil {
+		return all, append(faults, err), nil
 	}
-	return found, next, err
+	return all, faults, next
 }

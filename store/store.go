@@ -109,12 +109,8 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 		}
 	}
 	if len(b.Minutes) > 0 {
-		minutes := tx.Bucket(bucketMinutes)
-		minutes.FillPercent = appendFill
-		for _, m := range b.Minutes {
-			if err := minutes.Put(minuteKey(m.Start, m.Load), appendMinute(nil, m)); err != nil {
-				return fmt.Errorf("minute of load %d: %w", m.Load, err)
-			}
+		if err := putMinutes(tx, b.Minutes); err != nil {
+			return fmt.Errorf("minutes: %w", err)
 		}
 	}
 	if len(b.Registers) > 0 {

@@ -30,8 +30,8 @@ const (
 	reliefBytes = 256 << 10
 )
 
-// Trimmed says what retention has removed. Damaged counts groups whose name could
-// not be read, so that it is not known what was in them.
+// Trimmed says what retention has removed. Damaged counts the groups and the keys
+// of minutes that could not be read, so that it is not known what was in them.
 type Trimmed struct{ Readings, Minutes, Damaged int64 }
 
 // Trim removes readings and minutes older than MaxAge before now (event time,
@@ -149,13 +149,17 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 		}
 		excess -= int64(len(k) + len(v) + perKey)
 		keys = append(keys, bytes.Clone(k))
+		if all, err := parseMinutes(nil, k, v, anyLoad); err == nil {
+			t.Minutes += int64(len(all))
+		} else {
+			t.Damaged++
+		}
 	}
-	// Not with the cursor: after its Delete, Next may give the deleted key again.
+	// Collected first, for a deletion moves what a cursor stands on.
 	for _, k := range keys {
 		if err := minutes.Delete(k); err != nil {
 			return false, err
 		}
 	}
-	t.Minutes += int64(len(keys))
 	return len(keys) > 0 && (over || len(keys) == minutesATrim), nil
 }

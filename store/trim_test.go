@@ -57,10 +57,10 @@ func countReadings(t testing.TB, s *Store) (n int64, oldest int64) {
 	return n, oldest
 }
 
-// TestTrimByAge fills three months and keeps one.
+// TestTrimByAge fills two months and keeps one.
 func TestTrimByAge(t *testing.T) {
 	s := newStore(t, Options{MaxAge: 30 * 24 * time.Hour})
-	const from, days = 20_000 * day, 90
+	const from, days = 20_000 * day, 60
 	removed := fill(t, s, from, from+days*day, 3, func(int64) {})
 	end := int64(from + days*day)
 	readings, oldest := countReadings(t, s)
@@ -80,13 +80,13 @@ func TestTrimByAge(t *testing.T) {
 	}
 }
 
-// TestTrimByBytes fills four months: the bound holds after every trim, the file is
+// TestTrimByBytes fills ten weeks: the bound holds after every trim, the file is
 // not much longer, and readings go before minutes.
 func TestTrimByBytes(t *testing.T) {
-	const bound = 20 << 20
+	const bound = 12 << 20
 	path := filepath.Join(t.TempDir(), "history.db")
 	s := openStore(t, path, Options{MaxBytes: bound})
-	const from, days = 20_000 * day, 120
+	const from, days = 20_000 * day, 70
 	worst := int64(0)
 	removed := fill(t, s, from, from+days*day, 1, func(at int64) {
 		if s.Bytes() > bound {
@@ -115,7 +115,7 @@ func TestTrimByBytes(t *testing.T) {
 func TestTrimMinutesLast(t *testing.T) {
 	const bound = 3 << 20
 	s := newStore(t, Options{MaxBytes: bound})
-	const from, days = 20_000 * day, 40
+	const from, days = 20_000 * day, 30
 	removed := fill(t, s, from, from+days*day, 3, func(int64) {
 		if s.Bytes() > bound {
 			t.Fatalf("%d bytes in use, bound %d", s.Bytes(), bound)
@@ -162,7 +162,7 @@ func TestCompact(t *testing.T) {
 		t.Fatal(err)
 	}
 	const from = 20_000 * day
-	fill(t, s, from, from+90*day, 3, func(int64) {})
+	fill(t, s, from, from+50*day, 3, func(int64) {})
 	s.maxAge = 24 * time.Hour
 	if _, err := s.Trim(from + 90*day); err != nil {
 		t.Fatal(err)
@@ -187,7 +187,7 @@ func TestCompact(t *testing.T) {
 	if after := contents(t, s); after != before {
 		t.Errorf("after compaction %+v, before %+v", after, before)
 	}
-	commit(t, s, Batch{Beats: plant(from+90*day, 3600, 50)})
+	commit(t, s, Batch{Beats: plant(from+50*day, 3600, 50)})
 }
 
 type content struct {
