@@ -261,6 +261,18 @@ func TestWrongPassword(t *testing.T) {
 	ready(t, s)
 }
 
+// The two throw each other out until one stops.
+func TestTwoClientsWithOneID(t *testing.T) {
+	b := newMosquitto(t, "allow_anonymous true")
+	b.start(t)
+	s, log, _ := start(t, []Tag{number("a")}, Options{URL: b.url(), ClientID: "same"})
+	_, other, stop := start(t, []Tag{number("a")}, Options{URL: b.url(), ClientID: "same"})
+	const warning = "another client uses this id"
+	eventually(t, "a warning", func() bool { return log.count(warning)+other.count(warning) > 0 })
+	stop()
+	ready(t, s)
+}
+
 func TestTLSWithMosquitto(t *testing.T) {
 	a := plantAuthority(t)
 	b := newMosquitto(t, "allow_anonymous true", "cafile "+a.path("ca.pem"), "certfile "+a.path("broker.pem"),

@@ -321,13 +321,6 @@ func drainOverflow(t *testing.T, s *Session, messages int) []int {
 	return got
 }
 
-func TestTwoClientsWithOneID(t *testing.T) {
-	_, url := inProcess(t)
-	_, log, _ := start(t, []Tag{number("a")}, Options{URL: url, ClientID: "same"})
-	start(t, []Tag{number("a")}, Options{URL: url, ClientID: "same"})
-	eventually(t, "a warning", func() bool { return log.count("another client uses this id") > 0 })
-}
-
 func TestShortLives(t *testing.T) {
 	var s shortLives
 	now := time.Unix(1e9, 0)

@@ -11,7 +11,8 @@ import (
 	"github.com/eclipse/paho.mqtt.golang/packets"
 )
 
-// stub is a broker that answers each packet as a test says, or not at all (nil).
+// stub is a broker that answers each packet as a test says: with a packet, not at
+// all (nil), or by hanging up.
 func stub(t *testing.T, answer func(packets.ControlPacket) packets.ControlPacket) (url string) {
 	t.Helper()
 	l, err := net.Listen("tcp", "127.0.0.1:0")
@@ -41,11 +42,14 @@ func talk(c net.Conn, answer func(packets.ControlPacket) packets.ControlPacket) 
 		if _, bye := p.(*packets.DisconnectPacket); bye {
 			return
 		}
-		if a := answer(p); a != nil && a.Write(c) != nil {
+		a := answer(p)
+		if a == hangUp || (a != nil && a.Write(c) != nil) {
 			return
 		}
 	}
 }
+
+var hangUp = packets.NewControlPacket(packets.Disconnect)
 
 func connack(code byte) packets.ControlPacket {
 	p := packets.NewControlPacket(packets.Connack).(*packets.ConnackPacket)
@@ -183,4 +187,18 @@ func TestSilentLinkIsFound(t *testing.T) {
 	})
 	s, _, _ := start(t, []Tag{number("a")}, Options{URL: url, KeepAlive: time.Second, PingTimeout: 100 * time.Millisecond})
 	eventually(t, "loss and reconnection", func() bool { st := s.Stats(); return st.Losses > 0 && st.Connections > 1 })
+}
+
+func TestRepeatedLossesAreExplained(t *testing.T) {
+	url := stub(t, func(p packets.ControlPacket) packets.ControlPacket {
+		if _, ok := p.(*packets.ConnectPacket); ok {
+			return connack(packets.Accepted)
+		}
+		return hangUp
+	})
+	s, log, _ := start(t, []Tag{number("a")}, Options{URL: url})
+	eventually(t, "a warning", func() bool { return log.count("another client uses this id") > 0 })
+	if got := s.Stats().Losses; got < suspicious {
+		t.Errorf("warned after %d losses, want %d", got, suspicious)
+	}
 }
