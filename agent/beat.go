@@ -129,7 +129,7 @@ func (a *Agent) publish(r *rhythm) {
 		Loads: make([]view.Load, len(s.Loads)),
 		Tags:  make([]view.Tag, len(s.Tags)),
 		Broker: view.Broker{
-			Connected: stats.Connected, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
+			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
 		},
 		History: view.History{Bytes: l.store.Bytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost},
 	}

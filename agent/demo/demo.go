@@ -17,12 +17,19 @@ const MaxSpeed = 1440
 type Options struct {
 	Speed float64 // plant seconds a second, 1 to MaxSpeed; 0 is 1
 	Seed  uint64  // of the transmitters' noise
-	// After is the instant that the plant's clock begins after: at the next 05:30
-	// in the site's zone. Give the end of an earlier demo whose history goes on.
-	// Zero is the midnight that today began with.
+	// After is how far an earlier demo had come whose history goes on: what the
+	// plant says is stamped later. Zero is for a new history.
 	After time.Time
 	Log   *slog.Logger // nil for none
 }
+
+// The demo opens with the plant at 06:40 of its own day: the morning ramp is just
+// over, and what was said since 05:50 is there at once, so that means and verdicts
+// stand from the first moment.
+const (
+	openingPhase = 70 * time.Minute
+	openingLead  = 50 * time.Minute
+)
 
 // Demo is an invented plant with its broker.
 type Demo struct {
@@ -30,6 +37,7 @@ type Demo struct {
 	Clock  *Clock     // the plant's time, which the agent must go by too
 	Broker *Broker
 	plant  *Plant
+	course Course
 }
 
 // Start starts the broker and the plant's clock. Nothing is published before
@@ -58,13 +66,14 @@ func Start(o Options) (*Demo, error) {
 	}
 	s.Broker.URL = broker.URL()
 	s.Timing = hastened(s.Timing, o.Speed)
-	return &Demo{Site: s, Clock: NewClock(morningAfter(o.After, s.Zone), o.Speed), Broker: broker, plant: plant}, nil
+	start, course := opening(o.After, time.Now())
+	return &Demo{Site: s, Clock: NewClock(start, o.Speed), Broker: broker, plant: plant, course: course}, nil
 }
 
 // Run publishes what the plant's transmitters say until ctx ends, which is no
 // error.
 func (d *Demo) Run(ctx context.Context) error {
-	if err := Publish(ctx, d.Broker.URL(), d.Clock, d.plant); err != nil {
+	if err := Publish(ctx, d.Broker.URL(), d.Clock, d.plant, d.course); err != nil {
 		return err
 	}
 	if n := d.Broker.Dropped(); n > 0 {
@@ -91,16 +100,11 @@ func hastened(t site.Timing, speed float64) site.Timing {
 	return t
 }
 
-// morningAfter is the first 05:30 in the zone after an instant.
-func morningAfter(after time.Time, zone *time.Location) time.Time {
-	if after.IsZero() {
-		y, m, d := time.Now().In(zone).Date()
-		return time.Date(y, m, d, 5, 30, 0, 0, zone)
+// opening returns when the plant's clock starts: now, or where an earlier demo that
+// ran faster has come; and the course, whose lead does not reach back into it.
+func opening(after, now time.Time) (start time.Time, c Course) {
+	if start = now; after.After(now) {
+		start = after
 	}
-	y, m, d := after.In(zone).Date()
-	morning := time.Date(y, m, d, 5, 30, 0, 0, zone)
-	if !morning.After(after) {
-		morning = time.Date(y, m, d+1, 5, 30, 0, 0, zone)
-	}
-	return morning
+	return start, Course{Phase: openingPhase, Lead: min(openingLead, start.Sub(after))}
 }

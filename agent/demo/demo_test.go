@@ -11,7 +11,7 @@ import (
 )
 
 func TestDemoPublishes(t *testing.T) {
-	after := time.Date(2026, 3, 2, 12, 0, 0, 0, time.UTC)
+	after := time.Now().Add(time.Hour)
 	d, err := Start(Options{Speed: 60, Seed: 3, After: after})
 	if err != nil {
 		t.Fatal(err)
@@ -24,8 +24,8 @@ func TestDemoPublishes(t *testing.T) {
 	if d.Site.Broker.URL != d.Broker.URL() {
 		t.Errorf("the site's broker is at %q, want %q", d.Site.Broker.URL, d.Broker.URL())
 	}
-	if want := time.Date(2026, 3, 3, 5, 30, 0, 0, d.Site.Zone); !d.Clock.Start().Equal(want) {
-		t.Errorf("the clock begins at %v, want %v", d.Clock.Start(), want)
+	if !d.Clock.Start().Equal(after) {
+		t.Errorf("the clock begins at %v, want %v", d.Clock.Start(), after)
 	}
 	messages := subscribe(t, connect(t, d.Broker, "reader"), 1000)
 	ctx, cancel := context.WithCancel(t.Context())
@@ -75,22 +75,21 @@ func TestTimingFollowsTheSpeed(t *testing.T) {
 	}
 }
 
-func TestTheDayBeginsAtHalfPastFive(t *testing.T) {
-	dublin, err := time.LoadLocation("Europe/Dublin")
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, tt := range []struct{ after, want time.Time }{
-		{time.Date(2026, 3, 2, 4, 0, 0, 0, time.UTC), time.Date(2026, 3, 2, 5, 30, 0, 0, time.UTC)},
-		{time.Date(2026, 3, 2, 5, 30, 0, 0, time.UTC), time.Date(2026, 3, 3, 5, 30, 0, 0, time.UTC)},
-		{time.Date(2026, 3, 31, 12, 0, 0, 0, time.UTC), time.Date(2026, 4, 1, 4, 30, 0, 0, time.UTC)}, // summer time
+func TestOpening(t *testing.T) {
+	now := time.Date(2026, 3, 2, 12, 0, 0, 0, time.UTC)
+	for _, tt := range []struct {
+		name         string
+		after, start time.Time
+		lead         time.Duration
+	}{
+		{"a new history", time.Time{}, now, openingLead},
+		{"one of yesterday", now.Add(-24 * time.Hour), now, openingLead},
+		{"one that ended ten minutes ago", now.Add(-10 * time.Minute), now, 10 * time.Minute},
+		{"one that ran ahead of the clock", now.Add(5 * time.Hour), now.Add(5 * time.Hour), 0},
 	} {
-		if got := morningAfter(tt.after, dublin); !got.Equal(tt.want) {
-			t.Errorf("after %v: %v, want %v", tt.after, got, tt.want)
+		start, course := opening(tt.after, now)
+		if !start.Equal(tt.start) || course != (Course{openingPhase, tt.lead}) {
+			t.Errorf("%s: starts at %v with %+v, want %v with a lead of %v", tt.name, start, course, tt.start, tt.lead)
 		}
-	}
-	y, m, d := time.Now().In(dublin).Date()
-	if got := morningAfter(time.Time{}, dublin); !got.Equal(time.Date(y, m, d, 5, 30, 0, 0, dublin)) {
-		t.Errorf("begins at %v, want 05:30 today", got)
 	}
 }

@@ -13,13 +13,22 @@ const (
 	roundsApart = 50 * time.Millisecond
 	// answerWithin is how long the broker may take to acknowledge.
 	answerWithin = 10 * time.Second
+	// leadStep is the plant time between two rounds of the lead.
+	leadStep = 5 * time.Second
 )
 
+// Course says how the plant's day lies against the clock.
+type Course struct {
+	Phase time.Duration // of the plant's day at the clock's start, since 05:30
+	Lead  time.Duration // how long before the clock's start the plant is heard already
+}
+
 // Publish sends what the plant's transmitters say to the broker at url, with
-// QoS 1, until ctx ends, which is no error. It begins with the clock's start as
-// 05:30 of the plant's day and goes on every [Step] of the clock. What fell due
-// while it was held up is sent then, with the stamps it should have had.
-func Publish(ctx context.Context, url string, clock *Clock, plant *Plant) error {
+// QoS 1, until ctx ends, which is no error. It begins with the lead of the course,
+// in steps of [leadStep] and at once, as a broker does that kept it for a session;
+// from the clock's start on it sends every [Step] of the clock. What fell due while
+// it was held up is sent then, with the stamps it should have had.
+func Publish(ctx context.Context, url string, clock *Clock, plant *Plant, course Course) error {
 	c := mqtt.NewClient(mqtt.NewClientOptions().AddBroker(url).SetClientID("invented-plant").SetConnectTimeout(answerWithin))
 	if err := answer(ctx, c.Connect()); err != nil {
 		return ended(ctx, fmt.Errorf("publish to %q: %w", url, err))
@@ -28,15 +37,20 @@ func Publish(ctx context.Context, url string, clock *Clock, plant *Plant) error 
 	step := Step(clock.Speed(), plant)
 	timer := time.NewTimer(0)
 	defer timer.Stop()
-	for next := time.Duration(0); ; {
+	for next := -course.Lead.Truncate(leadStep); ; {
 		select {
 		case <-ctx.Done():
 			return nil
 		case <-timer.C:
 		}
-		for ; next <= clock.Elapsed(); next += step {
-			if err := plant.round(ctx, c, clock, next); err != nil {
+		for next <= clock.Elapsed() {
+			if err := plant.round(ctx, c, clock.Start().Add(next), course.Phase+next); err != nil {
 				return ended(ctx, fmt.Errorf("publish to %q: %w", url, err))
+			}
+			if next < 0 {
+				next += leadStep
+			} else {
+				next += step
 			}
 		}
 		timer.Reset(max(clock.Until(next), roundsApart))
@@ -57,14 +71,13 @@ func Step(speed float64, plant *Plant) time.Duration {
 	return max(step.Truncate(time.Second), time.Second)
 }
 
-// round publishes one sample of each transmitter and waits for the broker to
-// have them all.
-func (p *Plant) round(ctx context.Context, c mqtt.Client, clock *Clock, elapsed time.Duration) error {
+// round publishes one sample of each transmitter, stamped at, and waits for the
+// broker to have them all.
+func (p *Plant) round(ctx context.Context, c mqtt.Client, at time.Time, elapsed time.Duration) error {
 	samples, err := p.At(elapsed)
 	if err != nil {
 		return err
 	}
-	at := clock.Start().Add(elapsed)
 	tokens := make([]mqtt.Token, 0, len(samples))
 	for _, s := range samples {
 		if s.Condition == Silent {

@@ -24,7 +24,7 @@ func publish(t *testing.T, b *Broker, clock *Clock, p *Plant) (stop func()) {
 	t.Helper()
 	ctx, cancel := context.WithCancel(t.Context())
 	done := make(chan error, 1)
-	go func() { done <- Publish(ctx, b.URL(), clock, p) }()
+	go func() { done <- Publish(ctx, b.URL(), clock, p, Course{}) }()
 	return func() {
 		t.Helper()
 		cancel()
@@ -91,6 +91,31 @@ func checkMessage(t *testing.T, m mqtt.Message, topic string, want Sample, stamp
 	}
 }
 
+// The lead is sent at once, in its own steps, and the day goes on from it.
+func TestLead(t *testing.T) {
+	s := creamery(t)
+	p, b := newPlant(t, s, 7), startBroker(t)
+	messages := subscribe(t, connect(t, b, "reader"), 1000)
+	clock := NewClock(morning, 1)
+	course := Course{Phase: time.Hour, Lead: 12 * time.Second}
+	ctx, cancel := context.WithCancel(t.Context())
+	done := make(chan error, 1)
+	go func() { done <- Publish(ctx, b.URL(), clock, p, course) }()
+	for _, at := range []time.Duration{-10 * time.Second, -5 * time.Second, 0} {
+		samples, err := p.At(course.Phase + at)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, want := range samples {
+			checkMessage(t, receive(t, messages), s.Tags[want.Tag].Topic, want, morning.Add(at).UnixMilli())
+		}
+	}
+	cancel()
+	if err := <-done; err != nil {
+		t.Error(err)
+	}
+}
+
 // A round falls due when the clock says so, no sooner.
 func TestRoundsKeepToTheClock(t *testing.T) {
 	s := creamery(t)
@@ -141,7 +166,7 @@ func TestNoBrokerIsAnError(t *testing.T) {
 		t.Fatal(err)
 	}
 	p := newPlant(t, creamery(t), 7)
-	if err := Publish(t.Context(), "mqtt://"+address, NewClock(morning, 1), p); err == nil {
+	if err := Publish(t.Context(), "mqtt://"+address, NewClock(morning, 1), p, Course{}); err == nil {
 		t.Error("publishing to nobody gave no error")
 	}
 }

@@ -6,10 +6,10 @@ import "math"
 // measured time, those of temperatures and pressure over the part of it that
 // was not idle. A minute without measured time has no record.
 type Minute struct {
-	Load              int   // index into [Config.Loads]
-	Start             int64 // first instant of the minute
-	Measured, Missing int64 // ns
-	Idle              int64 // ns, within Measured
+	Load              int     // index into [Config.Loads]
+	Start             int64   // first instant of the minute
+	Measured, Missing int64   // ns
+	Idle              int64   // ns, within Measured
 	Given, Taken      float64 // J that the stream gave up, and took up
 	Duty              float64 // mean, W, positive in the load's service
 	DutyMin, DutyMax  float64 // of the grid's figures, W

@@ -42,6 +42,7 @@ var (
 
 	eventTime = desc("event_timestamp_seconds", "Unix time up to which everything is accounted for.")
 	connected = desc("broker_connected", "1 while the session with the broker is open.")
+	topics    = desc("broker_subscribed_topics", "Topics that the broker has granted on this connection.")
 	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
 	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
 	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
@@ -66,7 +67,7 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
 	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
-		reading, readings, refused, late, repeated, eventTime, connected, losses, unknown, waiting, bytes, failures, lost} {
+		reading, readings, refused, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, failures, lost} {
 		ch <- d
 	}
 }
@@ -152,6 +153,7 @@ func (o sink) agent(s *view.Snapshot) {
 		o.gauge(eventTime, seconds(s.At))
 	}
 	o.gauge(connected, truth(s.Broker.Connected))
+	o.gauge(topics, float64(s.Broker.Topics))
 	o.counter(losses, float64(s.Broker.Losses))
 	o.counter(unknown, float64(s.Broker.UnknownTopic))
 	o.gauge(waiting, float64(s.Broker.Waiting))

@@ -57,6 +57,7 @@ type Refusal struct {
 // Broker is the MQTT session.
 type Broker struct {
 	Connected    bool
+	Topics       int    // topics that the broker has granted on this connection
 	Losses       uint64 // connections lost since the agent started
 	UnknownTopic uint64 // messages on topics that no tag asks for
 	Fault        string // why there is no connection; empty when there is

@@ -7,6 +7,7 @@ import (
 	"log/slog"
 	"net"
 	"os"
+	"sync"
 	"time"
 
 	"golang.org/x/sync/errgroup"
@@ -60,12 +61,17 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	}
 	defer d.Close()
 	display := c.display(d)
+	subscribed := make(chan struct{})
+	heard := sync.OnceFunc(func() { close(subscribed) })
 	a, err := agent.New(d.Site, agent.Options{
 		Data: data, Listen: listen, Version: version, Log: log, Now: d.Clock.Now,
 		Ready: func(at net.Addr) {
 			fmt.Fprintf(c.stdout, "%s, an invented plant, on a broker of its own at %s\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n%s\n\n", d.Site.Name, d.Broker.URL(), at, at, agent.Safety)
 		},
 		Beat: func(s *view.Snapshot) {
+			if s.Broker.Topics > 0 {
+				heard()
+			}
 			if s.At != 0 { // something has come
 				display.Show(s)
 			}
@@ -76,7 +82,14 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	}
 	g, ctx := errgroup.WithContext(ctx)
 	g.Go(func() error { return a.Run(ctx) })
-	g.Go(func() error { return d.Run(ctx) })
+	g.Go(func() error {
+		select {
+		case <-subscribed: // before that, the plant would speak to nobody
+			return d.Run(ctx)
+		case <-ctx.Done():
+			return nil
+		}
+	})
 	return g.Wait()
 }
 
