@@ -131,7 +131,7 @@ func benchmarkPlain(b *testing.B, commits, seconds int) {
 			bucket.FillPercent = appendFill
 			for _, beat := range w.beats(seconds) {
 				for _, r := range beat.Readings {
-					key := minuteKey(r.At, r.Tag)
+					key := binary.BigEndian.AppendUint32(timeKey(r.At), r.Tag)
 					if err := bucket.Put(key, binary.LittleEndian.AppendUint64(nil, math.Float64bits(r.Value))); err != nil {
 						return err
 					}

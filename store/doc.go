@@ -22,13 +22,14 @@
 //	recent     a bucket for each part of the open group, by the uint64 sequence
 //	           of its first record; in it "r" -> records
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
-//	minutes    int64 start, uint32 load / 32 -> minute records, CRC
+//	minutes    int64 start, uint32 load / 8 -> minute records, CRC
 //	registers  "all" -> for each load, by number: uint32 load and 4 float64
 //	           (given, taken, measured, missing); CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
 //	           record it stands for, the engine's bytes, CRC
 //
-// names, minutes and state also hold an empty bucket named 00.
+// names, minutes and state also hold an empty bucket named 00: a bucket that holds
+// another is never laid into the root's page, whose room the tails need.
 //
 // Each batch that has beats makes one record, and records are numbered from 1
 // without a gap. A record is
@@ -65,7 +66,7 @@
 // Records that share this memory form a group. The memory starts empty with
 // each group. The open group lies in recent and, after that, in the three tails
 // taken as one run of bytes; once it holds 48 KiB it is closed and becomes one
-// value under this name:
+// bucket of journal under this name:
 //
 //	uint64 first sequence, big-endian; uint64 last sequence, int64 earliest,
 //	int64 latest, uint32 readings, CRC of these
@@ -74,8 +75,8 @@
 // and readings is how many there are. The names are the only index by time:
 // a search looks at all of them, some fifty to a page.
 //
-// Under one key of minutes lie those of up to 32 loads with one start, sorted by
-// load: for each, 1 byte with the remainder of load / 32, 6 bytes of 4-bit counts
+// Under one key of minutes lie those of up to 8 loads with one start, sorted by
+// load: for each, 1 byte with the remainder of load / 8, 6 bytes of 4-bit counts
 // (low half first) and the bytes of 12 floats, in the order of the fields of
 // [Minute] after Start. They end with a CRC. Of each float, XOR its forerunner,
 // those bytes are told that are left without zero bytes at the low end, high one
@@ -88,7 +89,12 @@
 // lies inside the root's own page, and so a commit that only adds to the tails
 // writes two pages: root and meta. Once the root's page is full, the tails move
 // to recent, and from there in larger pieces to journal, where a group costs one
-// key. Keys only ever grow, so pages fill up and stay as they are.
+// key. Keys only ever grow, so pages fill up and stay as they are. Groups have
+// buckets of their own because bbolt keeps two keys and more in each page, and so
+// writes long values again with each of the next few.
+//
+// The list of free pages is not kept in the file, which spares a page a commit;
+// Open makes it from the same walk over all pages that finds damage.
 //
 // A version other than 1 is refused. Change any of the above, and the version
 // must change with it.

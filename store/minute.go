@@ -17,8 +17,9 @@ const (
 	minuteFloats = 12
 
 	// loadsAKey is how many loads share a key: those whose numbers are alike but
-	// for the remainder by it.
-	loadsAKey = 32
+	// for the remainder by it. With many more, values become so large that bbolt,
+	// which keeps two keys and more in each page, leaves pages half empty.
+	loadsAKey = 8
 )
 
 // floats lists the fields in the order in which they are stored.
