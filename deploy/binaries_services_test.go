@@ -10,6 +10,7 @@ import (
 	"os/exec"
 	"path/filepath"
 	"runtime"
+	"strings"
 	"sync"
 	"testing"
 )
@@ -146,7 +147,7 @@ func checkSettings(t *testing.T, path string, to target) {
 	wantSettings(t, got, want)
 }
 
-// TestARMBinaryRuns runs the arm/v7 binary under qemu: it checks every example site.
+// TestARMBinaryRuns runs the arm/v7 binary under qemu: it checks every example site, and runs the demo to its end.
 func TestARMBinaryRuns(t *testing.T) {
 	path := binary(t, targets[2])
 	must(t, "qemu-arm-static", path, "version")
@@ -156,5 +157,10 @@ func TestARMBinaryRuns(t *testing.T) {
 	}
 	for _, site := range sites {
 		must(t, "qemu-arm-static", path, "check", site)
+	}
+	address := "127.0.0.1:" + freePort(t)
+	out := must(t, "qemu-arm-static", path, "demo", "--for", "10s", "--listen", address, "--data", t.TempDir())
+	if !strings.Contains(out, address) {
+		t.Errorf("the demo does not say where to look, %s:\n%s", address, out)
 	}
 }
