@@ -33,6 +33,7 @@ type rhythm struct {
 	stats     ingest.Stats
 	committed time.Time // system clock
 	trimmed   time.Time
+	late      []bool // tags whose first late reading has been told
 }
 
 // beats moves the accounts forward until ctx ends, then commits what is left.
@@ -40,7 +41,7 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	notify("READY=1")
 	defer notify("STOPPING=1")
 	now := time.Now()
-	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now}
+	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
 	r.pace.through = books.accounts.engine.Snapshot().Through
 	ticker := time.NewTicker(a.site.Timing.Beat)
 	defer ticker.Stop()
@@ -138,6 +139,10 @@ func (a *Agent) publish(r *rhythm) {
 	}
 	for i, t := range s.Tags {
 		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
+		if t.Late > 0 && !r.late[i] {
+			r.late[i] = true
+			a.o.Log.Warn("a reading came after its time was accounted for; more are only counted. If they go on, set the publisher's clock or raise timing.lateness", "tag", a.site.Tags[i].Name, "newest", time.Unix(0, t.Newest).UTC())
+		}
 	}
 	a.latest.Store(v)
 	if a.o.Beat != nil {
@@ -154,13 +159,18 @@ func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
 	}
 }
 
-// reasons are the names under which refused messages are counted.
+// reasons are the names under which a tag's refused messages are counted.
 var reasons = names(ingest.Reasons(), ingest.Reason.String)
 
+// crowded is one more: good readings that the engine had no room for.
+const crowded = "crowded"
+
 func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
-	v := view.Tag{Name: name, Newest: t.Newest, Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated, Refused: make([]view.Refusal, len(reasons))}
+	v := view.Tag{Name: name, Newest: t.Newest, Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated}
+	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
 	for i, reason := range reasons {
-		v.Refused[i] = view.Refusal{Reason: reason, Count: s.Refused[i]}
+		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})
 	}
+	v.Refused = append(v.Refused, view.Refusal{Reason: crowded, Count: t.Crowded})
 	return v
 }

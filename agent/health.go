@@ -2,6 +2,7 @@ package agent
 
 import (
 	"fmt"
+	"strings"
 	"sync/atomic"
 	"time"
 
@@ -35,7 +36,7 @@ func (h *health) ready() []string {
 		return append(wrong, "no beat yet")
 	}
 	if !s.Broker.Connected {
-		wrong = append(wrong, "broker is not connected: "+s.Broker.Fault)
+		wrong = append(wrong, strings.TrimSuffix("broker is not connected: "+s.Broker.Fault, ": "))
 	}
 	if s.History.Fault != "" {
 		wrong = append(wrong, "history: "+s.History.Fault)

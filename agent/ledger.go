@@ -191,14 +191,11 @@ func (l *ledger) bound() {
 	}
 }
 
-// commit writes what waits, with the registers, and with a checkpoint when one is
-// due or asked for. After an error everything waits on.
+// commit writes what waits; with closed minutes also the registers, which the beats
+// would give again; and a checkpoint when one is due or asked for. After an error
+// everything waits on.
 func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	registers := l.registers()
-	l.batch.Registers = l.batch.Registers[:0]
-	for i, r := range registers {
-		l.batch.Registers = append(l.batch.Registers, store.Register{Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, Measured: seconds(r.Measured), Missing: seconds(r.Missing)})
-	}
 	l.batch.Checkpoint = nil
 	checkpoint = checkpoint || l.forced || now.Sub(l.saved) >= checkpointEvery
 	if checkpoint {
@@ -207,6 +204,10 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 			return err
 		}
 		l.batch.Checkpoint = state
+	}
+	l.batch.Registers = l.batch.Registers[:0]
+	if checkpoint || len(l.batch.Minutes) > 0 {
+		l.writeRegisters(registers)
 	}
 	if err := l.store.Commit(l.batch); err != nil {
 		l.fail(err)
@@ -218,6 +219,14 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	l.committed, l.fault, l.waiting = registers, "", 0
 	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
 	return nil
+}
+
+func (l *ledger) writeRegisters(registers []view.Registers) {
+	for i, r := range registers {
+		l.batch.Registers = append(l.batch.Registers, store.Register{
+			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, Measured: seconds(r.Measured), Missing: seconds(r.Missing),
+		})
+	}
 }
 
 // fail counts a failed commit and logs the first of a row.

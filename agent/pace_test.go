@@ -68,3 +68,45 @@ func TestWaitingMessagesAreNoSilence(t *testing.T) {
 		t.Errorf("through %d s while messages wait for the disk, want 995", p.through/sec)
 	}
 }
+
+// Stamps two minutes behind our clock stay in time through a silence.
+func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	for s := int64(1000); s <= 1060; s += 10 {
+		p.reading((s-120)*sec, true, s*sec)
+		p.advance(s*sec, true, false)
+	}
+	for s := int64(1061); s <= 1100; s++ {
+		p.advance(s*sec, true, false)
+	}
+	if want := (1100 - 120 - 5) * sec; p.through != want {
+		t.Errorf("through %d s after a silence, want %d: the stamps lag 120 s", p.through/sec, want/sec)
+	}
+}
+
+// What the broker kept lags far, but what follows it does not: the least counts.
+func TestBacklogIsNoSlowClock(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	for s := int64(0); s <= 1000; s += 10 {
+		p.reading(s*sec, true, 1001*sec)
+	}
+	p.advance(1001*sec, true, false)
+	if got := p.advance(1016*sec, true, false); got != 1010*sec {
+		t.Errorf("through %d s, want 1010: the newest stamp lags 1 s", got/sec)
+	}
+}
+
+// A publisher whose clock is mended, or grows slow, is followed within two spans.
+func TestLagIsForgotten(t *testing.T) {
+	var l lag
+	l.note(0, 1*sec)
+	l.note(90*sec, 2*sec)
+	if l.least() != 0 {
+		t.Errorf("least lag %d s, want 0", l.least()/sec)
+	}
+	l.note(90*sec, 700*sec)
+	l.note(90*sec, 1400*sec)
+	if l.least() != 90*sec {
+		t.Errorf("least lag %d s two spans later, want 90", l.least()/sec)
+	}
+}

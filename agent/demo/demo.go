@@ -82,6 +82,12 @@ func (d *Demo) Run(ctx context.Context) error {
 	return nil
 }
 
+// Duty is what a load of the plant truly moves at an instant of its clock, in W,
+// positive in the load's service.
+func (d *Demo) Duty(load string, at time.Time) (float64, error) {
+	return d.plant.Duty(load, d.course.Phase+at.Sub(d.Clock.Start()))
+}
+
 // Close ends the broker, and with it all connections. It may be called twice.
 func (d *Demo) Close() error { return d.Broker.Close() }
 

@@ -53,6 +53,8 @@ type call struct {
 // usageError is a fault of the command line or of a file named on it.
 type usageError struct{ error }
 
+func (e usageError) Unwrap() error { return e.error }
+
 func wrongf(format string, args ...any) error { return usageError{fmt.Errorf(format, args...)} }
 
 // run is the program but for the exit: it returns the status.
