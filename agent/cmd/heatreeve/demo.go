@@ -65,9 +65,7 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	heard := sync.OnceFunc(func() { close(subscribed) })
 	a, err := agent.New(d.Site, agent.Options{
 		Data: data, Listen: listen, Version: version, Log: log, Now: d.Clock.Now,
-		Ready: func(at net.Addr) {
-			fmt.Fprintf(c.stdout, "%s, an invented plant, on a broker of its own at %s\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n%s\n\n", d.Site.Name, d.Broker.URL(), at, at, agent.Safety)
-		},
+		Ready: func(at net.Addr) { c.whereToLook(d, at) },
 		Beat: func(s *view.Snapshot) {
 			if s.Broker.Topics > 0 {
 				heard()
@@ -82,15 +80,23 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	}
 	g, ctx := errgroup.WithContext(ctx)
 	g.Go(func() error { return a.Run(ctx) })
-	g.Go(func() error {
-		select {
-		case <-subscribed: // before that, the plant would speak to nobody
-			return d.Run(ctx)
-		case <-ctx.Done():
-			return nil
-		}
-	})
+	g.Go(func() error { return speak(ctx, d, subscribed) })
 	return g.Wait()
+}
+
+// speak lets the plant publish once somebody listens.
+func speak(ctx context.Context, d *demo.Demo, subscribed <-chan struct{}) error {
+	select {
+	case <-subscribed:
+		return d.Run(ctx)
+	case <-ctx.Done():
+		return nil
+	}
+}
+
+func (c *call) whereToLook(d *demo.Demo, at net.Addr) {
+	fmt.Fprintf(c.stdout, "%s, an invented plant, on a broker of its own at %s\n", d.Site.Name, d.Broker.URL())
+	fmt.Fprintf(c.stdout, "metrics: http://%s/metrics\nhealth:  http://%s/readyz\n%s\n\n", at, at, agent.Safety)
 }
 
 // display is the table of the loads: drawn over in a terminal, and from time to

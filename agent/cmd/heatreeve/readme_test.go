@@ -4,6 +4,7 @@ import (
 	"os"
 	"regexp"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 
@@ -66,6 +67,19 @@ func TestReadmeSiteFileIsGood(t *testing.T) {
 	}
 	if s.Name != demo.Name || s.Loads[0].Name != demo.Loads[0].Name || s.Loads[0].Design.Duty != demo.Loads[0].Design.Duty {
 		t.Errorf("README shows %q with %q, the demo's file is %q with %q", s.Name, s.Loads[0].Name, demo.Name, demo.Loads[0].Name)
+	}
+}
+
+// The number of worked examples that the README claims is that of the file which a
+// test of thermo runs through.
+func TestReadmeCountsTheWorkedExamples(t *testing.T) {
+	file, err := os.ReadFile("../../../thermo/testdata/worked-examples.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	rows := len(regexp.MustCompile(`(?m)^[A-Z]\d\d,`).FindAll(file, -1))
+	if want := strconv.Itoa(rows) + " worked examples"; !strings.Contains(readme(t), want) {
+		t.Errorf("the README does not say %q", want)
 	}
 }
 
