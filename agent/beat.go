@@ -14,10 +14,6 @@ import (
 const (
 	// trimEvery is how often the history's bounds are looked at.
 	trimEvery = 10 * time.Minute
-	// smallWindow is the number of unacknowledged messages at which the agent
-	// commits early when nothing more comes: a broker that allows only 20 in
-	// flight is then waiting for us.
-	smallWindow = 16
 	// eagerReadings is how many readings are committed without waiting for the
 	// interval.
 	eagerReadings = 20_000
@@ -33,6 +29,8 @@ type rhythm struct {
 	stats     ingest.Stats
 	committed time.Time // system clock
 	trimmed   time.Time
+	window    window
+	told      bool   // that the broker waits
 	late      []bool // tags whose first late reading has been told
 }
 
@@ -43,15 +41,33 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	now := time.Now()
 	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
 	r.pace.through = books.accounts.engine.Snapshot().Through
-	ticker := time.NewTicker(a.site.Timing.Beat)
+	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTicker(lookEvery)
 	defer ticker.Stop()
+	defer look.Stop()
+	a.beat(r, time.Now())
 	for {
-		a.beat(r, time.Now())
 		select {
 		case <-ticker.C:
+			a.beat(r, time.Now())
+		case <-look.C:
+			a.look(r, time.Now())
 		case <-ctx.Done():
 			return a.last(r)
 		}
+	}
+}
+
+// look commits at once where the broker waits for acknowledgements.
+func (a *Agent) look(r *rhythm, system time.Time) {
+	was := r.window.eager
+	commit := r.window.look(a.session.Waiting())
+	if r.window.eager && !was && !r.told {
+		r.told = true
+		a.o.Log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", "messages", r.window.acked)
+	}
+	if commit {
+		a.take(r)
+		a.commit(r, system, false)
 	}
 }
 
@@ -97,9 +113,7 @@ func (a *Agent) take(r *rhythm) {
 }
 
 func (a *Agent) due(r *rhythm, system time.Time) bool {
-	return system.Sub(r.committed) >= a.site.Timing.Commit ||
-		r.books.waiting >= eagerReadings ||
-		len(r.received) == 0 && len(r.unacked) >= smallWindow
+	return system.Sub(r.committed) >= a.site.Timing.Commit || r.books.waiting >= eagerReadings
 }
 
 // commit writes to disk and only then acknowledges to the broker.
@@ -114,6 +128,7 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 		}
 		return false
 	}
+	r.window.committed(a.session.Waiting())
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]
 	return true

@@ -184,3 +184,27 @@ func TestBrokerGoneForAMinute(t *testing.T) {
 	}
 	within(t, "heat per measured second", a.value(t, given)/a.value(t, measured), steady, 1e-9)
 }
+
+// Mosquitto as it comes allows 20 messages in flight and keeps 1,000 more; with a
+// commit each five seconds and a hundred messages a second it would lose most of
+// them if the agent did not notice that it waits.
+func TestBrokerWithItsOwnLimits(t *testing.T) {
+	b := startBrokerWith(t, "max_inflight_messages 20\nmax_queued_messages 1000\n")
+	a := startAgent(t, b.site(t, strings.NewReplacer("%ID%", "limits", "commit: 1 s", "commit: 5 s").Replace(circuit)))
+	a.subscribed(t, b, "bench/all", "TT-1")
+	pub := b.lines(t, "bench/all")
+	base := time.Now().Add(-time.Hour).UnixMilli()
+	pace := time.NewTicker(10 * time.Millisecond)
+	defer pace.Stop()
+	const messages = 2500
+	for i := range int64(messages) {
+		<-pace.C
+		pub.send(t, `{"ti":85,"to":60,"q":25,"p":3.2,"ts":%d}`, base+i*1000)
+	}
+	pub.close(t)
+	a.reaches(t, `heatreeve_tag_readings_total{tag="TT-1"}`, messages)
+	a.reaches(t, measured, messages-1-5-1)
+	if v := a.value(t, missing); v != 0 {
+		t.Errorf("missing %v s, want 0", v)
+	}
+}

@@ -152,10 +152,16 @@ type broker struct {
 
 func startBroker(t *testing.T) *broker {
 	t.Helper()
+	return startBrokerWith(t, "max_inflight_messages 1000\nmax_queued_messages 65000\n")
+}
+
+// startBrokerWith starts mosquitto with further lines of configuration.
+func startBrokerWith(t *testing.T, lines string) *broker {
+	t.Helper()
 	dir := t.TempDir()
 	os.Chmod(dir, 0o777) // mosquitto gives up root and writes here as its own user
 	b := &broker{port: freePort(t), conf: filepath.Join(dir, "mosquitto.conf"), path: program(t, "mosquitto", "mosquitto")}
-	text := fmt.Sprintf("listener %d 127.0.0.1\nallow_anonymous true\npersistence true\npersistence_location %s/\nmax_inflight_messages 1000\nmax_queued_messages 65000\nconnection_messages false\n", b.port, dir)
+	text := fmt.Sprintf("listener %d 127.0.0.1\nallow_anonymous true\npersistence true\npersistence_location %s/\nconnection_messages false\n%s", b.port, dir, lines)
 	if err := os.WriteFile(b.conf, []byte(text), 0o644); err != nil {
 		t.Fatal(err)
 	}
