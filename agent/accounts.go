@@ -18,17 +18,20 @@ const wholeMinute = 54 * time.Second
 // beat at a time by one goroutine.
 type accounts struct {
 	cfg    loads.Config
+	digest [32]byte
 	engine *loads.Engine
 	judges []*design.Judge
 	closed []loads.Minute
 }
 
-func newAccounts(cfg loads.Config, targets []design.Target) (*accounts, error) {
+// newAccounts returns empty accounts of the plant that the site file with the given
+// digest describes.
+func newAccounts(cfg loads.Config, targets []design.Target, digest [32]byte) (*accounts, error) {
 	engine, err := loads.New(cfg)
 	if err != nil {
 		return nil, err
 	}
-	a := &accounts{cfg: cfg, engine: engine}
+	a := &accounts{cfg: cfg, digest: digest, engine: engine}
 	for _, t := range targets {
 		a.judges = append(a.judges, design.NewJudge(t))
 	}
@@ -53,6 +56,7 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 // savedAccounts is the state of engine and judges; judges by the name of their
 // load.
 type savedAccounts struct {
+	Digest [32]byte // of the site file that the accounts were kept by
 	Engine []byte
 	Judges map[string]savedJudge
 }
@@ -68,7 +72,7 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
+	s := savedAccounts{Digest: a.digest, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
 	}
@@ -79,15 +83,16 @@ func (a *accounts) save() ([]byte, error) {
 	return buf.Bytes(), nil
 }
 
-func (a *accounts) restore(state []byte) error {
+// restore takes up what save wrote, and reports whether it was by the same site file.
+func (a *accounts) restore(state []byte) (same bool, err error) {
 	var s savedAccounts
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
-		return fmt.Errorf("restore state of %d bytes: %w", len(state), err)
+		return false, fmt.Errorf("restore state of %d bytes: %w", len(state), err)
 	}
 	for i, j := range a.judges {
 		if was, ok := s.Judges[a.cfg.Loads[i].Name]; ok {
 			j.Restore(was.Last, was.Minutes)
 		}
 	}
-	return a.engine.Restore(s.Engine)
+	return s.Digest == a.digest, a.engine.Restore(s.Engine)
 }

@@ -99,13 +99,15 @@ func (a *Agent) last(r *rhythm) error {
 }
 
 func (a *Agent) take(r *rhythm) {
-	now := a.o.Now().UnixNano()
+	now := a.o.Now()
 	r.received = a.session.Take(r.received[:0])
-	r.unacked = append(r.unacked, r.received...)
 	r.readings = r.readings[:0]
 	for _, x := range r.received {
 		r.readings = append(r.readings, x.Reading)
-		r.pace.reading(x.At, x.Stamped, now)
+		r.pace.reading(x.At, x.Stamped, x.InOrder, now)
+		if x.Acknowledgeable() {
+			r.unacked = append(r.unacked, x)
+		}
 	}
 	r.stats = a.session.Stats()
 	through := r.pace.advance(now, r.stats.Connected, a.session.Waiting() > 0)
@@ -123,6 +125,7 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 	err := r.books.commit(system, checkpoint)
 	a.commits.Observe(time.Since(begun).Seconds())
 	if err != nil {
+		r.window.failed()
 		if store.IsFull(err) {
 			r.trimmed = time.Time{} // make room at once
 		}
@@ -141,13 +144,13 @@ func (a *Agent) publish(r *rhythm) {
 	v := &view.Snapshot{
 		Site:  a.site.Name,
 		At:    s.Through,
-		Slack: int64(a.site.Timing.Lateness + 2*a.site.Timing.Beat + 2*a.site.Timing.Grid),
+		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + r.pace.lag.least(),
 		Loads: make([]view.Load, len(s.Loads)),
 		Tags:  make([]view.Tag, len(s.Tags)),
 		Broker: view.Broker{
 			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
 		},
-		History: view.History{Bytes: l.store.Bytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost},
+		History: view.History{Bytes: l.store.Bytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
 	for i := range s.Loads {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
@@ -156,7 +159,7 @@ func (a *Agent) publish(r *rhythm) {
 		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
 		if t.Late > 0 && !r.late[i] {
 			r.late[i] = true
-			a.o.Log.Warn("a reading came after its time was accounted for; more are only counted. If they go on, set the publisher's clock or raise timing.lateness", "tag", a.site.Tags[i].Name, "newest", time.Unix(0, t.Newest).UTC())
+			a.o.Log.Warn("a reading came after its time was accounted for; more are only counted. If they go on, set the publisher's clock or raise timing.lateness", "tag", a.site.Tags[i].Name, "event_time", time.Unix(0, s.Through).UTC())
 		}
 	}
 	a.latest.Store(v)
@@ -168,7 +171,7 @@ func (a *Agent) publish(r *rhythm) {
 func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
 	d := a.site.Loads[i].Design
 	return view.Load{
-		Name: a.site.Loads[i].Name, Figure: s.Figure, Means: s.Means, Booked: l.committed[i],
+		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
 		Design: d.Duty, Allow: d.Allow,
 		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
 	}
@@ -181,7 +184,7 @@ var reasons = names(ingest.Reasons(), ingest.Reason.String)
 const crowded = "crowded"
 
 func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
-	v := view.Tag{Name: name, Newest: t.Newest, Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated}
+	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated}
 	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
 	for i, reason := range reasons {
 		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})

@@ -22,29 +22,32 @@ const (
 	// maxUncommitted bounds the readings that wait in memory for a disk that
 	// takes nothing; beyond it the oldest are given up and counted.
 	maxUncommitted = 200_000
+	// maxMinutes bounds the minute records that wait likewise.
+	maxMinutes = 100_000
 )
 
 // ledger keeps the accounts and the history of them together: what the accounts
 // took in since the last commit waits here until it is on disk.
 type ledger struct {
-	accounts  *accounts
-	store     *store.Store
-	log       *slog.Logger
-	tagIDs    []uint32
-	loadIDs   []uint32
-	batch     store.Batch
-	waiting   int // readings in batch
-	committed []view.Registers
-	saved     time.Time // of the last checkpoint
-	forced    bool      // readings were given up, so only a checkpoint can carry the accounts on
-	lost      uint64    // readings given up
-	failures  uint64
-	fault     string
+	accounts    *accounts
+	store       *store.Store
+	log         *slog.Logger
+	tagIDs      []uint32
+	loadIDs     []uint32
+	batch       store.Batch
+	waiting     int // readings in batch
+	committed   []view.Registers
+	saved       time.Time // of the last checkpoint
+	forced      bool      // readings were given up, so only a checkpoint can carry the accounts on
+	lost        uint64    // readings given up
+	lostMinutes uint64
+	failures    uint64
+	fault       string
 }
 
 // openLedger takes up the accounts where the history left them.
 func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) (*ledger, error) {
-	a, err := newAccounts(plantOf(s), targetsOf(s))
+	a, err := newAccounts(plantOf(s), targetsOf(s), s.Digest)
 	if err != nil {
 		return nil, err
 	}
@@ -58,10 +61,27 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 	if err := l.resume(); err != nil {
 		return nil, fmt.Errorf("resume the accounts: %w", err)
 	}
-	if err := l.commit(now, true); err != nil {
+	l.committed = l.registers()
+	if err := l.first(now); err != nil {
 		return nil, err
 	}
 	return l, nil
+}
+
+// first commits the run's own checkpoint. On a full disk it makes room as long as
+// there is any to make; where there is none, the agent starts all the same, and says
+// that its history is not written.
+func (l *ledger) first(now time.Time) error {
+	for {
+		err := l.commit(now, true)
+		if err == nil || !store.IsFull(err) {
+			return err
+		}
+		t, trimErr := l.store.Trim(l.accounts.engine.Snapshot().Through)
+		if trimErr != nil || t.Readings+t.Minutes == 0 {
+			return nil
+		}
+	}
 }
 
 func names[T any](all []T, name func(T) string) []string {
@@ -74,25 +94,40 @@ func names[T any](all []T, name func(T) string) []string {
 
 // resume restores the last checkpoint and puts the beats since through again. A
 // load that the checkpoint does not know, because the site file left it out for a
-// while, goes on from its registers. Every run begins with a checkpoint of its
-// own, so no beat counts for a load of another site file.
+// while, goes on from its registers. Where the site file has changed since, the
+// beats are not computed again by rules that were not theirs: the registers stand
+// as they were last committed, and the readings are only held.
 func (l *ledger) resume() error {
 	known, err := l.totals()
 	if err != nil {
 		return err
 	}
-	for i, r := range known {
-		l.accounts.engine.SetRegisters(i, r.Given, r.Taken, nanoseconds(r.Measured), nanoseconds(r.Missing))
-	}
+	l.take(known)
 	state, ok, err := l.store.Checkpoint()
 	if err != nil {
 		return err
 	}
+	same := true
 	if ok {
-		if err := l.accounts.restore(state); err != nil {
+		if same, err = l.accounts.restore(state); err != nil {
 			return err
 		}
 	}
+	if !same {
+		l.take(known)
+	}
+	return l.replay(same)
+}
+
+// take gives the loads the registers that the history holds for them.
+func (l *ledger) take(known map[int]store.Register) {
+	for i, r := range known {
+		l.accounts.engine.SetRegisters(i, r.Given, r.Taken, nanoseconds(r.Measured), nanoseconds(r.Missing))
+	}
+}
+
+// replay brings the accounts from the checkpoint to the last commit.
+func (l *ledger) replay(compute bool) error {
 	index := l.tagIndex()
 	for b, err := range l.store.Before(recallSpan) {
 		if err != nil {
@@ -104,7 +139,12 @@ func (l *ledger) resume() error {
 		if err != nil {
 			return err
 		}
-		l.accounts.advance(loads.Beat{Readings: readingsOf(b, index), Through: b.Through})
+		beat := loads.Beat{Readings: readingsOf(b, index), Through: b.Through}
+		if compute {
+			l.accounts.advance(beat)
+		} else {
+			l.accounts.engine.Adopt(beat)
+		}
 	}
 	return nil
 }
@@ -189,11 +229,14 @@ func (l *ledger) bound() {
 		l.batch.Beats = l.batch.Beats[1:]
 		l.forced = true
 	}
+	if n := len(l.batch.Minutes) - maxMinutes; n > 0 {
+		l.lostMinutes += uint64(n)
+		l.batch.Minutes = l.batch.Minutes[n:]
+	}
 }
 
-// commit writes what waits; with closed minutes also the registers, which the beats
-// would give again; and a checkpoint when one is due or asked for. After an error
-// everything waits on.
+// commit writes what waits, with the registers, and with a checkpoint when one is
+// due or asked for. After an error everything waits on.
 func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	registers := l.registers()
 	l.batch.Checkpoint = nil
@@ -205,10 +248,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 		}
 		l.batch.Checkpoint = state
 	}
-	l.batch.Registers = l.batch.Registers[:0]
-	if checkpoint || len(l.batch.Minutes) > 0 {
-		l.writeRegisters(registers)
-	}
+	l.writeRegisters(registers)
 	if err := l.store.Commit(l.batch); err != nil {
 		l.fail(err)
 		return err
@@ -222,6 +262,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 }
 
 func (l *ledger) writeRegisters(registers []view.Registers) {
+	l.batch.Registers = l.batch.Registers[:0]
 	for i, r := range registers {
 		l.batch.Registers = append(l.batch.Registers, store.Register{
 			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, Measured: seconds(r.Measured), Missing: seconds(r.Missing),

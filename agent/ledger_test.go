@@ -155,6 +155,32 @@ func TestLedgerKeepsTheRegistersOfALoadThatWasAway(t *testing.T) {
 	}
 }
 
+// After a kill, beats of another site file are not computed by today's: the
+// registers stand as last committed, and go on from there.
+func TestLedgerDoesNotReplayAnotherSite(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	water := parsed(t, benchSite)
+	glycol := parsed(t, strings.Replace(benchSite, "fluid: water", "fluid: glycol", 1)+"fluids: {glycol: {propylene glycol: 40 %}}\n")
+	l, shut := open(t, water, path, store.Options{})
+	feed(l, 0, 301)
+	if err := l.commit(clock, false); err != nil {
+		t.Fatal(err)
+	}
+	want := l.registers()[0]
+	shut() // without a checkpoint, as after a kill
+
+	l, shut = open(t, glycol, path, store.Options{})
+	defer shut()
+	if got := l.registers()[0]; got != want {
+		t.Errorf("registers %+v after a change of the site file, want %+v", got, want)
+	}
+	feed(l, 301, 400)
+	got := l.registers()[0]
+	if got.Given <= want.Given || got.Measured+got.Missing != want.Measured+want.Missing+99*sec {
+		t.Errorf("registers %+v a hundred seconds later, were %+v", got, want)
+	}
+}
+
 // A disk that takes nothing stops neither the accounts nor the agent: failures are
 // counted, what waits is bounded, and with the disk's return everything that the
 // accounts hold is written.

@@ -7,62 +7,64 @@ import (
 
 const sec = int64(time.Second)
 
+func wall(ns int64) time.Time { return time.Unix(0, ns) }
+
 func TestPaceFollowsTheStamps(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
-	p.reading(1000*sec, true, 1001*sec)
-	if got := p.advance(1001*sec, true, false); got != 995*sec {
+	p.reading(1000*sec, true, true, wall(1001*sec))
+	if got := p.advance(wall(1001*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995", got/sec)
 	}
-	p.reading(990*sec, true, 1002*sec)
-	if got := p.advance(1002*sec, true, false); got != 995*sec {
+	p.reading(990*sec, true, true, wall(1002*sec))
+	if got := p.advance(wall(1002*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s after an older stamp, want 995", got/sec)
 	}
 }
 
 func TestPaceIsNotLedByAFastClock(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
-	p.reading(1025*sec, true, 1000*sec)
-	if got := p.advance(1000*sec, true, false); got != 995*sec {
+	p.reading(1025*sec, true, true, wall(1000*sec))
+	if got := p.advance(wall(1000*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995: our own clock bounds it", got/sec)
 	}
 }
 
 func TestPaceIsNotLedByArrivalsWhereSomeAreStamped(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
-	p.reading(500*sec, true, 1000*sec)   // the broker's backlog
-	p.reading(1000*sec, false, 1000*sec) // a bare number among it
-	if got := p.advance(1000*sec, true, false); got != 495*sec {
+	p.reading(500*sec, true, true, wall(1000*sec))   // the broker's backlog
+	p.reading(1000*sec, false, true, wall(1000*sec)) // a bare number among it
+	if got := p.advance(wall(1000*sec), true, false); got != 495*sec {
 		t.Errorf("through %d s, want 495", got/sec)
 	}
 }
 
 func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
-	p.reading(1000*sec, true, 1000*sec)
-	p.advance(1000*sec, true, false)
-	if got := p.advance(1014*sec, true, false); got != 995*sec {
+	p.reading(1000*sec, true, true, wall(1000*sec))
+	p.advance(wall(1000*sec), true, false)
+	if got := p.advance(wall(1014*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s after 14 s of silence, want 995", got/sec)
 	}
-	if got := p.advance(1015*sec, true, false); got != 1010*sec {
+	if got := p.advance(wall(1015*sec), true, false); got != 1010*sec {
 		t.Errorf("through %d s after 15 s of silence, want 1010", got/sec)
 	}
-	p.advance(1016*sec, false, false)
-	if got := p.advance(2000*sec, false, false); got != 1010*sec {
+	p.advance(wall(1016*sec), false, false)
+	if got := p.advance(wall(2000*sec), false, false); got != 1010*sec {
 		t.Errorf("through %d s while the broker is away, want 1010", got/sec)
 	}
-	if got := p.advance(2001*sec, true, false); got != 1010*sec {
+	if got := p.advance(wall(2001*sec), true, false); got != 1010*sec {
 		t.Errorf("through %d s just after the broker is back, want 1010", got/sec)
 	}
-	if got := p.advance(2016*sec, true, false); got != 2011*sec {
+	if got := p.advance(wall(2016*sec), true, false); got != 2011*sec {
 		t.Errorf("through %d s after 15 s of silence again, want 2011", got/sec)
 	}
 }
 
 func TestWaitingMessagesAreNoSilence(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
-	p.reading(1000*sec, true, 1000*sec)
+	p.reading(1000*sec, true, true, wall(1000*sec))
 	for s := int64(1000); s < 1100; s++ {
-		p.advance(s*sec, true, true)
+		p.advance(wall(s*sec), true, true)
 	}
 	if p.through != 995*sec {
 		t.Errorf("through %d s while messages wait for the disk, want 995", p.through/sec)
@@ -73,11 +75,11 @@ func TestWaitingMessagesAreNoSilence(t *testing.T) {
 func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
 	for s := int64(1000); s <= 1060; s += 10 {
-		p.reading((s-120)*sec, true, s*sec)
-		p.advance(s*sec, true, false)
+		p.reading((s-120)*sec, true, true, wall(s*sec))
+		p.advance(wall(s*sec), true, false)
 	}
 	for s := int64(1061); s <= 1100; s++ {
-		p.advance(s*sec, true, false)
+		p.advance(wall(s*sec), true, false)
 	}
 	if want := (1100 - 120 - 5) * sec; p.through != want {
 		t.Errorf("through %d s after a silence, want %d: the stamps lag 120 s", p.through/sec, want/sec)
@@ -88,10 +90,10 @@ func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
 func TestBacklogIsNoSlowClock(t *testing.T) {
 	p := pace{lateness: 5 * time.Second, stamped: true}
 	for s := int64(0); s <= 1000; s += 10 {
-		p.reading(s*sec, true, 1001*sec)
+		p.reading(s*sec, true, true, wall(1001*sec))
 	}
-	p.advance(1001*sec, true, false)
-	if got := p.advance(1016*sec, true, false); got != 1010*sec {
+	p.advance(wall(1001*sec), true, false)
+	if got := p.advance(wall(1016*sec), true, false); got != 1010*sec {
 		t.Errorf("through %d s, want 1010: the newest stamp lags 1 s", got/sec)
 	}
 }
@@ -99,14 +101,51 @@ func TestBacklogIsNoSlowClock(t *testing.T) {
 // A publisher whose clock is mended, or grows slow, is followed within two spans.
 func TestLagIsForgotten(t *testing.T) {
 	var l lag
-	l.note(0, 1*sec)
-	l.note(90*sec, 2*sec)
+	l.note(0, wall(1*sec))
+	l.note(90*sec, wall(2*sec))
 	if l.least() != 0 {
 		t.Errorf("least lag %d s, want 0", l.least()/sec)
 	}
-	l.note(90*sec, 700*sec)
-	l.note(90*sec, 1400*sec)
+	l.note(90*sec, wall(700*sec))
+	l.note(90*sec, wall(1400*sec))
 	if l.least() != 90*sec {
 		t.Errorf("least lag %d s two spans later, want 90", l.least()/sec)
+	}
+}
+
+// A bare number keeps coming while the stamped publisher is dead: time goes on by
+// the clock all the same.
+func TestBareNumbersDoNotHideASilence(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1000*sec, true, true, wall(1000*sec))
+	for s := int64(1001); s <= 1100; s++ {
+		p.reading(s*sec, false, true, wall(s*sec))
+		p.advance(wall(s*sec), true, false)
+	}
+	if p.through != 1095*sec {
+		t.Errorf("through %d s, want 1095", p.through/sec)
+	}
+}
+
+// A live message without delivery guarantee, or a retained one, overtakes what the
+// broker kept, and must not make it late.
+func TestWhatOvertakesDoesNotLead(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	p.reading(1000*sec, true, false, wall(1000*sec))
+	p.reading(400*sec, true, true, wall(1000*sec))
+	if got := p.advance(wall(1000*sec), true, false); got != 395*sec {
+		t.Errorf("through %d s, want 395: the backlog leads", got/sec)
+	}
+}
+
+// Where nothing else comes, such messages do not stop time.
+func TestOnlyWithoutGuarantee(t *testing.T) {
+	p := pace{lateness: 5 * time.Second, stamped: true}
+	for s := int64(1000); s <= 1100; s++ {
+		p.reading((s-30)*sec, true, false, wall(s*sec))
+		p.advance(wall(s*sec), true, false)
+	}
+	if want := (1100 - 30 - 5) * sec; p.through != want {
+		t.Errorf("through %d s, want %d: by the clock, set back by the lag", p.through/sec, want/sec)
 	}
 }

@@ -39,6 +39,10 @@ func (w *window) committed(n int) {
 	w.acked, w.waiting, w.looks, w.silent = n, 0, 0, 0
 }
 
+// failed notes that a commit could not be made: the broker's silence means nothing
+// until one is.
+func (w *window) failed() { w.eager, w.early, w.acked = false, false, 0 }
+
 // look takes in how many messages wait now, and reports whether to commit for the
 // broker's sake.
 func (w *window) look(waiting int) bool {

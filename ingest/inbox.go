@@ -13,6 +13,10 @@ type Received struct {
 	from *message // nil: delivered at most once, there is nothing to acknowledge
 }
 
+// Acknowledgeable reports whether the broker keeps the reading's message until
+// [Session.Ack].
+func (r Received) Acknowledgeable() bool { return r.from != nil }
+
 // acknowledger is a message of the client library.
 type acknowledger interface{ Ack() }
 

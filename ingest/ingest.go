@@ -22,4 +22,8 @@ type Reading struct {
 	At      int64   // event time, Unix nanoseconds: the payload's stamp, else the arrival
 	Value   float64 // SI, finite, within the tag's Min and Max
 	Stamped bool    // At came from the payload
+	// InOrder says that the message came in the order in which the broker keeps
+	// what it has for this session: QoS 1 and not retained. Others overtake what
+	// is still kept. A [Decoder] leaves it false; a [Session] sets it.
+	InOrder bool
 }

@@ -71,7 +71,7 @@ func (e *Engine) enlist(load int) {
 // Event time never runs back: an earlier Through than the last is ignored.
 func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 	for _, r := range b.Readings {
-		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked()))
+		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
 	}
 	e.through = max(e.through, b.Through)
 	if e.next == 0 && !e.begin() {
@@ -99,6 +99,18 @@ func (e *Engine) Recall(readings []Reading) {
 	}
 }
 
+// Adopt takes in a beat whose intervals have been booked elsewhere: its readings are
+// held, event time moves on, and nothing is booked.
+func (e *Engine) Adopt(b Beat) {
+	for _, r := range b.Readings {
+		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
+	}
+	e.through = max(e.through, b.Through)
+	if e.next != 0 || e.begin() {
+		e.next = max(e.next, floor(e.through, e.cfg.Grid))
+	}
+}
+
 // booked returns the newest grid point computed, or a time before all others.
 func (e *Engine) booked() int64 {
 	if e.next == 0 {
@@ -118,8 +130,13 @@ func (e *Engine) count(tag int, r Receipt) {
 	}
 }
 
+// reachBack is how long before event time the accounts may begin: a stray stamp of
+// a clock that was never set must not open years of missing time.
+const reachBack = 24 * 60 * minute
+
 // begin sets the first grid point once event time has reached the earliest
-// reading; without any reading the accounts begin where event time stands.
+// reading, at most reachBack before event time; without any reading the accounts
+// begin where event time stands.
 func (e *Engine) begin() bool {
 	first := int64(math.MaxInt64)
 	for i := range e.tags {
@@ -133,7 +150,7 @@ func (e *Engine) begin() bool {
 	if first <= 0 || first > e.through {
 		return false
 	}
-	e.next = floor(first+e.cfg.Grid-1, e.cfg.Grid)
+	e.next = ceil(max(first, e.through-reachBack), e.cfg.Grid)
 	return true
 }
 
@@ -170,14 +187,21 @@ func (e *Engine) evaluateAll(g int64) bool {
 }
 
 // silence returns how long from g on nothing can change while no load has a
-// figure: up to the next waiting reading, the end of the minute, or the end of
-// event time, on the grid.
+// figure: up to the next waiting reading or the end of event time, on the grid. It
+// ends with the minute g lies in, or where g begins one, with a later minute, so
+// that every minute which holds anything is closed on its own.
 func (e *Engine) silence(g int64) int64 {
-	until := min(floor(g, minute)+minute, floor(e.through, e.cfg.Grid))
+	until := floor(e.through, e.cfg.Grid)
 	for i := range e.tags {
 		if p := e.tags[i].Pending; len(p) > 0 {
-			until = min(until, floor(p[0].At+e.cfg.Grid-1, e.cfg.Grid))
+			until = min(until, ceil(p[0].At, e.cfg.Grid))
 		}
+	}
+	if end := floor(g, minute) + minute; until > end {
+		if g != floor(g, minute) {
+			until = end
+		}
+		until = floor(until, minute)
 	}
 	return max(until-g, e.cfg.Grid)
 }
@@ -189,7 +213,7 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		if l.Minute.Begun && g >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}
-		l.book(g, span, e.cfg.Loads[i].Stream.Gives)
+		l.book(g, span, e.cfg.Grid, e.cfg.Loads[i].Stream.Gives)
 		if g+span >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}
@@ -206,13 +230,13 @@ func (l *loadState) closeMinute(load int, closed []Minute) []Minute {
 
 // book adds the present figure over span. The registers know which way the stream's
 // heat went; windows and duty are positive in the load's service.
-func (l *loadState) book(g, span int64, gives bool) {
+func (l *loadState) book(g, span, grid int64, gives bool) {
 	f := &l.figure
 	l.Minute.book(f, g, span, gives)
 	if !f.Measured() {
 		l.Registers.Missing += span
 		for k := range l.Windows {
-			l.Windows[k].book(g, 0, 0)
+			l.Windows[k].book(g+span-grid, 0, 0)
 		}
 		return
 	}

@@ -254,3 +254,77 @@ func TestGridMustDivideTheMinute(t *testing.T) {
 		t.Errorf("New with a grid of 7 s: %v", err)
 	}
 }
+
+// What a transmitter without a signal may send destroys nothing: a duty that is
+// not finite, or that no plant has, is a fault of the moment.
+func TestAbsurdFlowIsAFault(t *testing.T) {
+	for _, q := range []float64{1e305, math.MaxFloat64, 1e307} {
+		for _, kind := range []FlowKind{MassFlow, VolumeFlow} {
+			cfg := plant(liquid)
+			cfg.Loads[0].Stream.FlowKind = kind
+			cfg.Tags[flow].Accuracy = Accuracy{Rel: 0.01}
+			e := engine(t, cfg)
+			e.Advance(Beat{at(0, 2, 350, 330), through(0)}, nil)
+			e.Advance(Beat{at(10, q, 350, 350), through(10)}, nil)
+			e.Advance(Beat{at(20, 2, 350, 330), through(30)}, nil)
+			l := e.Snapshot().Loads[0]
+			if math.IsNaN(l.Given) || math.IsInf(l.Given, 0) || l.Taken != 0 {
+				t.Errorf("flow %g, kind %d: given %g J, taken %g J", q, kind, l.Given, l.Taken)
+			}
+			if l.Missing != 10*second || l.Figure.Fault != NoFault {
+				t.Errorf("flow %g, kind %d: missing %d s, fault %v; want 10 s, and none afterwards", q, kind, l.Missing/second, l.Figure.Fault)
+			}
+		}
+	}
+}
+
+// A stamp of 2000, as a clock that was never set gives, opens at most a day of
+// missing time.
+func TestStrayOldStampOpensADayAtMost(t *testing.T) {
+	e := engine(t, plant(liquid))
+	e.Advance(Beat{append([]Reading{{flow, 946_684_807 * second, 2}}, at(0, 2, 350, 330)...), through(60)}, nil)
+	l := e.Snapshot().Loads[0]
+	if l.Measured != minute || l.Missing != reachBack-minute {
+		t.Errorf("measured %d s, missing %d s; want 60 and the rest of a day", l.Measured/second, l.Missing/second)
+	}
+}
+
+// Many readings for one grid point wait as one, so a burst is no crowd, and the
+// last of them is the one that counts.
+func TestBurstWithinAGridStep(t *testing.T) {
+	e := engine(t, plant(liquid))
+	var burst []Reading
+	for i := range int64(10_000) {
+		burst = append(burst, Reading{flow, epoch + 1 + i*99_000, float64(i)})
+	}
+	e.Advance(Beat{append(burst, at(0, 2, 350, 330)[1:]...), through(0)}, nil)
+	e.Advance(Beat{burst[5000:5001], through(2)}, nil)
+	s := e.Snapshot()
+	if got := s.Tags[flow].Tally; got.Crowded != 0 || got.Late != 0 {
+		t.Errorf("tally %+v, want no crowd and nothing late", got)
+	}
+	near(t, "flow", s.Loads[0].Figure.MassFlow, 9999, 0)
+}
+
+// A figure is fresh as long as a newer reading waits for event time to reach it.
+func TestUntilCountsWaitingReadings(t *testing.T) {
+	e := engine(t, plant(liquid))
+	e.Advance(Beat{at(0, 2, 350, 330), through(1)}, nil)
+	e.Advance(Beat{at(50, 2, 350, 330), through(1)}, nil)
+	if got, want := e.Snapshot().Loads[0].Until, through(110); got != want {
+		t.Errorf("until %d, want %d", got, want)
+	}
+}
+
+func TestAdoptHoldsAndBooksNothing(t *testing.T) {
+	e := engine(t, plant(liquid))
+	e.Advance(Beat{at(0, 2, 350, 330), through(10)}, nil)
+	before := e.Snapshot().Loads[0]
+	e.Adopt(Beat{at(20, 3, 350, 330), through(30)})
+	after := e.Snapshot()
+	if after.Loads[0].Given != before.Given || after.Loads[0].Measured != before.Measured || after.Through != through(30) {
+		t.Errorf("given %g J, measured %d, through %d; want %g, %d, %d", after.Loads[0].Given, after.Loads[0].Measured, after.Through, before.Given, before.Measured, through(30))
+	}
+	e.Advance(Beat{nil, through(40)}, nil)
+	near(t, "heat after", e.Snapshot().Loads[0].Given-before.Given, 3*4000*20*10, 1e-6)
+}

@@ -42,6 +42,10 @@ func (e *Engine) evaluate(l *Load, g int64) Figure {
 	return s.figure(f, x, u)
 }
 
+// largestMassFlow, kg/s, is beyond any pipe: what gives more is no flow but the
+// absurd number of a transmitter without a signal, and would spoil the registers.
+const largestMassFlow = 1e6
+
 func (s *Stream) figure(f Figure, x state, u [PartCp]float64) Figure {
 	if why, near := s.saturated(x); near {
 		return f.fail(Saturation, why)
@@ -52,6 +56,9 @@ func (s *Stream) figure(f Figure, x state, u [PartCp]float64) Figure {
 	}
 	if err := s.spread(&f, x, u, r); err != nil {
 		return f.fail(OutOfRange, err.Error())
+	}
+	if !(r.mass <= largestMassFlow) {
+		return f.fail(OutOfRange, fmt.Sprintf("mass flow of %g kg/s is more than any pipe carries", r.mass))
 	}
 	f.Duty, f.MassFlow, f.Density = r.duty, r.mass, r.density
 	f.Inlet, f.Outlet, f.Pressure = x.inlet, x.outlet, x.pressure

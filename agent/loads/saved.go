@@ -66,7 +66,7 @@ func (e *Engine) Restore(state []byte) error {
 		}
 	}
 	if s.Grid != e.cfg.Grid {
-		e.next = floor(e.next+e.cfg.Grid-1, e.cfg.Grid)
+		e.next = ceil(e.next, e.cfg.Grid)
 	}
 	return nil
 }

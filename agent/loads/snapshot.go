@@ -1,5 +1,7 @@
 package loads
 
+import "math"
+
 // Snapshot is what the engine knows at one instant; nothing changes it later.
 type Snapshot struct {
 	Through int64 // every interval that ends by then is booked
@@ -9,7 +11,11 @@ type Snapshot struct {
 
 // LoadState is one load in a [Snapshot]; heat in J, times in ns.
 type LoadState struct {
-	Figure            Figure // at the last grid point
+	Figure Figure // at the last grid point
+	// Until is when the first input that the figure needs runs out of age, counted
+	// from the newest reading of each tag, also one that event time has not
+	// reached; MaxInt64 for constants alone.
+	Until             int64
 	Means             [len(Windows)]Mean
 	Given, Taken      float64
 	Measured, Missing int64
@@ -30,11 +36,29 @@ func (e *Engine) Snapshot() Snapshot {
 	}
 	for i := range e.loads {
 		s.Loads[i] = e.loads[i].snapshot(e.next)
+		s.Loads[i].Until = e.until(i)
 	}
 	for i := range e.tags {
 		s.Tags[i] = TagState{Newest: e.tags[i].Newest, Tally: e.tally[i]}
 	}
 	return s
+}
+
+// until is [LoadState.Until] of a load; an idle one needs only its flow.
+func (e *Engine) until(load int) int64 {
+	s := &e.cfg.Loads[load].Stream
+	needs := []Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure}
+	if e.loads[load].figure.Idle {
+		needs = needs[:1]
+	}
+	until := int64(math.MaxInt64)
+	for _, src := range needs {
+		if src.Tag >= 0 {
+			t := &e.tags[src.Tag]
+			until = min(until, max(t.Held.At, t.Newest)+e.cfg.Tags[src.Tag].MaxAge)
+		}
+	}
+	return until
 }
 
 func (l *loadState) snapshot(through int64) LoadState {

@@ -6,7 +6,7 @@ import (
 )
 
 const (
-	maxPending = 4096 // readings of one tag that wait for event time
+	maxPending = 4096 // grid steps for which readings of one tag wait for event time
 	maxRecent  = 128  // stamps of one tag remembered to tell a repeat from a late reading
 )
 
@@ -36,8 +36,10 @@ type tagState struct {
 	next    int      // where the ring is written next
 }
 
-// take files one reading. Booked is the newest grid point already computed.
-func (t *tagState) take(s sample, booked int64) Receipt {
+// take files one reading. Booked is the newest grid point already computed. Of the
+// readings that fall to one grid point only the last can be held there, so only it
+// waits.
+func (t *tagState) take(s sample, booked, grid int64) Receipt {
 	if s.At <= booked {
 		if t.Held.Has && t.Held.At == s.At || slices.Contains(t.recent, s.At) {
 			return Repeated
@@ -52,10 +54,19 @@ func (t *tagState) take(s sample, booked int64) Receipt {
 			return Repeated
 		}
 	}
-	if n >= maxPending {
-		return Crowded
+	if s.At <= t.Newest && slices.Contains(t.recent, s.At) {
+		return Repeated
 	}
-	t.Pending = slices.Insert(t.Pending, i, s)
+	switch {
+	case i < n && ceil(t.Pending[i].At, grid) == ceil(s.At, grid):
+		// a later one of the same grid point waits already
+	case i > 0 && ceil(t.Pending[i-1].At, grid) == ceil(s.At, grid):
+		t.Pending[i-1] = s
+	case n >= maxPending:
+		return Crowded
+	default:
+		t.Pending = slices.Insert(t.Pending, i, s)
+	}
 	t.Newest = max(t.Newest, s.At)
 	t.remember(s.At)
 	return Taken

@@ -70,3 +70,6 @@ func (w *Window) mean(through int64) Mean {
 
 // floor returns the multiple of step at or before at; at is not negative.
 func floor(at, step int64) int64 { return at - at%step }
+
+// ceil returns the multiple of step at or after at; at is not negative.
+func ceil(at, step int64) int64 { return floor(at+step-1, step) }

@@ -48,6 +48,7 @@ var (
 	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
 	bytes     = desc("history_bytes", "Bytes in use by the history on disk.")
 	lost      = desc("history_lost_readings_total", "Readings given up because the disk took nothing for long; the registers have them.")
+	lostMins  = desc("history_lost_records_total", "Minute records given up because the disk took nothing for long; the registers have them.")
 	failures  = desc("history_commit_failures_total", "Commits of the history that failed since the agent started.")
 )
 
@@ -67,7 +68,7 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
 	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
-		reading, readings, refused, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, failures, lost} {
+		reading, readings, refused, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, failures, lost, lostMins} {
 		ch <- d
 	}
 }
@@ -84,6 +85,7 @@ func (c *Collector) Collect(ch chan<- prometheus.Metric) {
 		figure, v := s.Current(i, now)
 		out.figure(s.Loads[i].Name, &figure)
 		out.load(&s.Loads[i], v)
+		out.means(s, i, now)
 	}
 	for i := range s.Tags {
 		out.tag(&s.Tags[i])
@@ -118,12 +120,6 @@ func (o sink) figure(name string, f *loads.Figure) {
 }
 
 func (o sink) load(l *view.Load, now design.Verdict) {
-	for k, m := range l.Means {
-		if m.Coverage > 0 {
-			o.gauge(dutyMean, m.Duty, l.Name, windowNames[k])
-		}
-		o.gauge(coverage, m.Coverage, l.Name, windowNames[k])
-	}
 	o.counter(heat, l.Booked.Given, l.Name, "given")
 	o.counter(heat, l.Booked.Taken, l.Name, "taken")
 	o.counter(spent, float64(l.Booked.Measured)/1e9, l.Name, "measured")
@@ -133,6 +129,17 @@ func (o sink) load(l *view.Load, now design.Verdict) {
 	}
 	for _, v := range design.Verdicts {
 		o.gauge(verdict, truth(v == now), l.Name, v.String())
+	}
+}
+
+func (o sink) means(s *view.Snapshot, i int, now int64) {
+	name := s.Loads[i].Name
+	for k := range s.Loads[i].Means {
+		m := s.Mean(i, k, now)
+		if m.Coverage > 0 {
+			o.gauge(dutyMean, m.Duty, name, windowNames[k])
+		}
+		o.gauge(coverage, m.Coverage, name, windowNames[k])
 	}
 }
 
@@ -160,6 +167,7 @@ func (o sink) agent(s *view.Snapshot) {
 	o.gauge(bytes, float64(s.History.Bytes))
 	o.counter(failures, float64(s.History.Failures))
 	o.counter(lost, float64(s.History.Lost))
+	o.counter(lostMins, float64(s.History.LostMinutes))
 }
 
 func truth(b bool) float64 {

@@ -2,6 +2,7 @@ package site
 
 import (
 	"bytes"
+	"crypto/sha256"
 	"errors"
 	"fmt"
 	"io"
@@ -38,7 +39,7 @@ func Load(path string) (*Site, error) {
 func Parse(name string, text []byte) (*Site, error) {
 	s := &scope{file: name}
 	if root := s.document(text); len(s.faults) == 0 {
-		r := &reader{site: &Site{}, file: name}
+		r := &reader{site: &Site{Digest: sha256.Sum256(text)}, file: name}
 		r.read(value{scope: s, node: root})
 		if len(s.faults) == 0 {
 			return r.site, nil

@@ -58,9 +58,25 @@ func (r *reader) stream(o object) Stream {
 	}
 	if v, ok := o.get("idle_below"); ok && s.FlowKind != 0 {
 		s.IdleBelow = notNegative(v, s.FlowKind)
+	} else if !s.Flow.Constant() && s.FlowKind != 0 {
+		s.IdleBelow = r.site.Tags[s.Flow.Tag].zero()
 	}
 	o.checkStream(s)
 	return s
+}
+
+// zeroOfRange is the part of a flow meter's range at or below which nothing is taken
+// to flow, unless the load says: common practice, no source.
+const zeroOfRange = 0.005
+
+// zero is how far from zero, SI, a flow tag may read while nothing flows: half a
+// percent of its range, or the part of its accuracy that does not depend on the
+// reading, whichever is more; 0 where it has neither.
+func (t Tag) zero() float64 {
+	if _, ok := largestFlow[t.Unit.Dimension]; ok && t.Max < largestFlow[t.Unit.Dimension] {
+		return max(zeroOfRange*t.Max, t.Accuracy.Abs)
+	}
+	return t.Accuracy.Abs
 }
 
 // service reads which way the load serves.

@@ -22,6 +22,7 @@ import (
 
 // Site is a checked site file.
 type Site struct {
+	Digest         [32]byte // SHA-256 of the file's text
 	Name           string
 	Zone           *time.Location // of days and months in reports
 	Barometer      float64        // Pa; the standard atmosphere when the file gives none
@@ -45,7 +46,7 @@ type Tag struct {
 	TimeFormat    string // "s", "ms", "us", "rfc3339"; "" to tell by shape and magnitude
 	Accuracy      Accuracy
 	MaxAge        time.Duration // how long a reading is held; default 60 s
-	Min, Max      float64       // instrument range, SI, absolute; infinite when absent
+	Min, Max      float64       // instrument range, SI, absolute; when absent infinite, or what no pipe carries
 	QoS           byte          // always 1: each reading is acknowledged when it is on disk
 }
 
@@ -91,7 +92,7 @@ type Stream struct {
 	MeterAtOutlet            bool           // where a volume flow is metered
 	Gives                    bool           // gives heat, and is colder at the outlet; else it takes heat
 	Margin                   float64        // K to saturation below which heat may be latent; default 5
-	IdleBelow                float64        // SI, as the flow; default 0
+	IdleBelow                float64        // SI, as the flow; default 0.5 % of the flow tag's range
 }
 
 // Design is what a load should move.

@@ -87,8 +87,16 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 	if u.Gauge {
 		t.Offset = r.site.Barometer
 	}
+	if largest, ok := largestFlow[u.Dimension]; ok {
+		t.Min, t.Max = -largest, largest
+	}
 	return true
 }
+
+// largestFlow bounds a flow tag without a range, SI: beyond any pipe, but far below
+// what a transmitter without a signal may send, such as the largest 32-bit float.
+// Temperatures and pressures have the bounds of their fluids.
+var largestFlow = map[unit.Dimension]float64{unit.MassFlow: 1e5, unit.VolumeFlow: 1e5, unit.MolarFlow: 1e7}
 
 // payload reads where in a message the value and its time stand.
 func (o object) payload(t *Tag) {

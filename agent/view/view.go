@@ -14,7 +14,7 @@ import (
 type Snapshot struct {
 	Site    string
 	At      int64 // event time: every interval that ends by then is accounted for
-	Slack   int64 // how far event time may stand behind the clock in good order, ns
+	Slack   int64 // how long a reading may be on its way into a figure in good order, ns
 	Loads   []Load
 	Tags    []Tag
 	Broker  Broker
@@ -25,6 +25,7 @@ type Snapshot struct {
 type Load struct {
 	Name    string
 	Figure  loads.Figure
+	Until   int64 // when the first input runs out of age; MaxInt64 for constants alone
 	Means   [len(loads.Windows)]loads.Mean
 	Booked  Registers // as last committed to disk
 	Design  float64   // expected duty, W; 0 where the load has none
@@ -70,6 +71,8 @@ type History struct {
 	Failures uint64 // commits that failed since the agent started
 	Fault    string // why the last commit failed; empty when it did not
 	Lost     uint64 // readings given up because the disk took nothing for long
+	// LostMinutes are minute records given up likewise.
+	LostMinutes uint64
 }
 
 // Current returns the load's figure as it may be shown at the instant now, and
@@ -77,8 +80,27 @@ type History struct {
 // it was worked is blind: a frozen last value is never shown as live.
 func (s *Snapshot) Current(i int, now int64) (loads.Figure, design.Verdict) {
 	l := &s.Loads[i]
-	if l.Figure.Measured() && l.Figure.Until < math.MaxInt64-s.Slack && now > l.Figure.Until+s.Slack {
+	if l.Figure.Measured() && s.out(l, now) {
 		return loads.Figure{At: l.Figure.At, Fault: loads.Stale, Reason: "no reading has come in time to hold the figure"}, design.Blind
 	}
 	return l.Figure, l.Verdict
+}
+
+// out tells whether the load's inputs have run out of age.
+func (s *Snapshot) out(l *Load, now int64) bool {
+	return l.Until < math.MaxInt64-s.Slack && now > l.Until+s.Slack
+}
+
+// Mean returns the rolling mean k of load i as it may be shown at the instant now.
+// Once the load's inputs have run out of age, the time since then counts as not
+// measured, though event time stands still: the coverage falls, and is 0 when the
+// window has passed.
+func (s *Snapshot) Mean(i, k int, now int64) loads.Mean {
+	l := &s.Loads[i]
+	m := l.Means[k]
+	if s.out(l, now) {
+		since := now - l.Until - s.Slack
+		m.Coverage *= max(0, 1-float64(since)/float64(loads.Windows[k]))
+	}
+	return m
 }
