@@ -57,6 +57,7 @@ type Agent struct {
 	latest  atomic.Pointer[view.Snapshot]
 	health  health
 	commits prometheus.Histogram
+	watch   *watch // for the beat alone
 }
 
 // New returns an agent for s that is not started yet.
@@ -69,7 +70,8 @@ func New(s *site.Site, o Options) (*Agent, error) {
 		return nil, err
 	}
 	a := &Agent{site: s, o: o, session: session, commits: metrics.CommitSeconds()}
-	a.health.latest = &a.latest
+	a.health.latest, a.health.now = &a.latest, o.Now
+	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil
 }
 

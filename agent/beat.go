@@ -3,6 +3,8 @@ package agent
 import (
 	"context"
 	"fmt"
+	"os"
+	"path/filepath"
 	"time"
 
 	"heatreeve/agent/loads"
@@ -41,6 +43,9 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	now := time.Now()
 	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
 	r.pace.through = books.accounts.engine.Snapshot().Through
+	if ahead := time.Unix(0, r.pace.through).Sub(a.o.Now()); ahead > a.site.Timing.Ahead {
+		a.o.Log.Error("the history stands in the future of this machine's clock; until the clock has come there, every reading is late. Set the clock, or give another data folder", "history", time.Unix(0, r.pace.through).UTC(), "ahead", ahead.Round(time.Second))
+	}
 	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTicker(lookEvery)
 	defer ticker.Stop()
 	defer look.Stop()
@@ -69,6 +74,20 @@ func (a *Agent) look(r *rhythm, system time.Time) {
 		a.take(r)
 		a.commit(r, system, false)
 	}
+	if r.books.fault != "" && r.window.stuck() && len(r.unacked) > 0 {
+		a.goOn(r)
+	}
+}
+
+// goOn acknowledges what is in memory only: the disk takes nothing, so the broker
+// has stopped sending, and the loads would go blind. What the accounts hold goes
+// into the next checkpoint; a crash before it loses it.
+func (a *Agent) goOn(r *rhythm) {
+	a.o.Log.Warn("the disk takes nothing and the broker waits: going on in memory; a crash now would lose what has come since the last commit", "messages", len(r.unacked))
+	r.books.forced = true
+	a.session.Ack(r.unacked)
+	r.unacked = r.unacked[:0]
+	r.window.failed()
 }
 
 // beat takes what came, computes, commits when due, and publishes.
@@ -84,6 +103,7 @@ func (a *Agent) beat(r *rhythm, system time.Time) {
 		}
 	}
 	a.publish(r)
+	a.watch.look(a.latest.Load(), a.o.Now())
 	a.health.tick(system)
 	notify("WATCHDOG=1")
 }
@@ -95,6 +115,7 @@ func (a *Agent) last(r *rhythm) error {
 	if !a.commit(r, time.Now(), true) {
 		return fmt.Errorf("last commit: %s", r.books.fault)
 	}
+	a.o.Log.Info("heatreeve has stopped", "event_time", time.Unix(0, r.pace.through).UTC())
 	return nil
 }
 
@@ -150,7 +171,7 @@ func (a *Agent) publish(r *rhythm) {
 		Broker: view.Broker{
 			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
 		},
-		History: view.History{Bytes: l.store.Bytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
+		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
 	for i := range s.Loads {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
@@ -166,6 +187,15 @@ func (a *Agent) publish(r *rhythm) {
 	if a.o.Beat != nil {
 		a.o.Beat(v)
 	}
+}
+
+// fileBytes is the size of the history's file, 0 where it cannot be told.
+func (a *Agent) fileBytes() int64 {
+	info, err := os.Stat(filepath.Join(a.o.Data, HistoryFile))
+	if err != nil {
+		return 0
+	}
+	return info.Size()
 }
 
 func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
@@ -184,7 +214,7 @@ var reasons = names(ingest.Reasons(), ingest.Reason.String)
 const crowded = "crowded"
 
 func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
-	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted, Late: t.Late, Repeated: t.Repeated}
+	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
 	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
 	for i, reason := range reasons {
 		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})

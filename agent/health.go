@@ -15,6 +15,7 @@ const deadBeat = 30 * time.Second
 // health answers whether the agent lives and whether it serves.
 type health struct {
 	latest *atomic.Pointer[view.Snapshot]
+	now    func() time.Time
 	beat   atomic.Int64 // time.Now().UnixNano() of the last beat
 }
 
@@ -34,6 +35,9 @@ func (h *health) ready() []string {
 	s := h.latest.Load()
 	if s == nil {
 		return append(wrong, "no beat yet")
+	}
+	if ahead := time.Unix(0, s.At).Sub(h.now()); ahead > time.Minute {
+		wrong = append(wrong, fmt.Sprintf("the accounts stand %s ahead of this machine's clock: set the clock, or give another data folder", ahead.Round(time.Second)))
 	}
 	if !s.Broker.Connected {
 		wrong = append(wrong, strings.TrimSuffix("broker is not connected: "+s.Broker.Fault, ": "))

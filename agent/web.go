@@ -13,10 +13,14 @@ import (
 
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
+
+	"heatreeve/agent/view"
 )
 
-// Safety is the line that every face of the program carries.
-const Safety = "Heatreeve informs. It is no safety function, interlock or alarm of record, and no billing meter. Site codes, the plant's own protection and licensed people come first."
+// Safety is what every face of the program says of itself.
+const Safety = `Heatreeve informs. It is no safety function, interlock or alarm of record, and
+no billing meter. Site codes, the plant's own protection and licensed people
+come first.`
 
 // handler serves the metrics and the two answers that supervisors ask for.
 func handler(reg *prometheus.Registry, health *health, log *slog.Logger) http.Handler {
@@ -31,9 +35,29 @@ func handler(reg *prometheus.Registry, health *health, log *slog.Logger) http.Ha
 	mux.HandleFunc("GET /healthz", answer(health.alive))
 	mux.HandleFunc("GET /readyz", answer(health.ready))
 	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
-		fmt.Fprintf(w, "Heatreeve\n\n/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n\n%s\n", Safety)
+		w.Header().Set("Content-Type", "text/plain; charset=utf-8")
+		front(w, health.latest.Load(), health.now())
 	})
 	return mux
+}
+
+// front is the page at /: the loads with what is wrong with them, and where the
+// rest is.
+func front(w io.Writer, s *view.Snapshot, now time.Time) {
+	if s != nil {
+		fmt.Fprintf(w, "Heatreeve at %s\n\n", s.Site)
+		for i := range s.Loads {
+			figure, verdict := s.Current(i, now.UnixNano())
+			duty := "-"
+			if figure.Measured() {
+				duty = kilowatts(figure.Duty)
+			}
+			line := fmt.Sprintf("%-32s %-10s %14s  %s", s.Loads[i].Name, verdict, duty, figure.Reason)
+			fmt.Fprintln(w, strings.TrimRight(line, " "))
+		}
+		fmt.Fprintln(w)
+	}
+	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n\n%s\n", Safety)
 }
 
 // answer turns a list of what is wrong into 200 or 503, a line a fault.

@@ -10,6 +10,9 @@ const (
 	answerLooks = 2
 	// silentLooks is how many looks without a message are a silence.
 	silentLooks = 2
+	// stuckLooks is how many looks without a message show that a broker has stopped,
+	// where nothing can be acknowledged because nothing can be stored.
+	stuckLooks = 10
 	// leastWindow is the smallest number of messages that a broker is thought to
 	// hold back for; fewer wait in any quiet plant.
 	leastWindow = 8
@@ -57,6 +60,9 @@ func (w *window) look(waiting int) bool {
 	w.early = w.early || commit
 	return commit
 }
+
+// stuck reports whether messages wait and no more have come for a while.
+func (w *window) stuck() bool { return w.waiting >= leastWindow && w.silent >= stuckLooks }
 
 // judge takes in whether the last commit was answered.
 func (w *window) judge(answered bool) {

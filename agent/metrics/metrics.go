@@ -36,7 +36,8 @@ var (
 
 	reading  = desc("tag_reading_timestamp_seconds", "Unix time of the newest accepted reading.", "tag")
 	readings = desc("tag_readings_total", "Readings accepted since the agent started.", "tag")
-	refused  = desc("tag_refused_total", "Messages refused since the agent started, by reason.", "tag", "reason")
+	refused  = desc("tag_refused_total", "Messages refused since the agent started, by tag and reason; reasons that a tag has not met are left out.", "tag", "reason")
+	refusals = desc("refused_total", "Messages refused since the agent started, by reason, over all tags.", "reason")
 	late     = desc("tag_late_readings_total", "Readings that came after their time was accounted for: kept, but in no figure.", "tag")
 	repeated = desc("tag_repeated_readings_total", "Readings delivered more than once and counted once.", "tag")
 
@@ -46,7 +47,8 @@ var (
 	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
 	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
 	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
-	bytes     = desc("history_bytes", "Bytes in use by the history on disk.")
+	bytes     = desc("history_bytes", "Bytes in use within the history's file; retention bounds them.")
+	fileBytes = desc("history_file_bytes", "Size of the history's file, free pages included.")
 	lost      = desc("history_lost_readings_total", "Readings given up because the disk took nothing for long; the registers have them.")
 	lostMins  = desc("history_lost_records_total", "Minute records given up because the disk took nothing for long; the registers have them.")
 	failures  = desc("history_commit_failures_total", "Commits of the history that failed since the agent started.")
@@ -68,7 +70,7 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
 	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
-		reading, readings, refused, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, failures, lost, lostMins} {
+		reading, readings, refused, refusals, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, fileBytes, failures, lost, lostMins} {
 		ch <- d
 	}
 }
@@ -90,6 +92,7 @@ func (c *Collector) Collect(ch chan<- prometheus.Metric) {
 	for i := range s.Tags {
 		out.tag(&s.Tags[i])
 	}
+	out.refusals(s.Tags)
 	out.agent(s)
 }
 
@@ -151,7 +154,23 @@ func (o sink) tag(t *view.Tag) {
 	o.counter(late, float64(t.Late), t.Name)
 	o.counter(repeated, float64(t.Repeated), t.Name)
 	for _, r := range t.Refused {
-		o.counter(refused, float64(r.Count), t.Name, r.Reason)
+		if r.Count > 0 {
+			o.counter(refused, float64(r.Count), t.Name, r.Reason)
+		}
+	}
+}
+
+// refusals adds up over the tags, so that every reason has a series from the start.
+func (o sink) refusals(tags []view.Tag) {
+	if len(tags) == 0 {
+		return
+	}
+	for k, r := range tags[0].Refused {
+		var sum uint64
+		for i := range tags {
+			sum += tags[i].Refused[k].Count
+		}
+		o.counter(refusals, float64(sum), r.Reason)
 	}
 }
 
@@ -165,6 +184,7 @@ func (o sink) agent(s *view.Snapshot) {
 	o.counter(unknown, float64(s.Broker.UnknownTopic))
 	o.gauge(waiting, float64(s.Broker.Waiting))
 	o.gauge(bytes, float64(s.History.Bytes))
+	o.gauge(fileBytes, float64(s.History.FileBytes))
 	o.counter(failures, float64(s.History.Failures))
 	o.counter(lost, float64(s.History.Lost))
 	o.counter(lostMins, float64(s.History.LostMinutes))

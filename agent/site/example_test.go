@@ -15,7 +15,7 @@ tags:
   FT-201: {topic: hw/FT-201, unit: m3/h, accuracy: "0,5 % of reading"}
 loads:
   hot-water:
-    stream: {fluid: water, flow: FT-201, inlet: TT-20, outlet: 60 °C, pressure: 3 barg, meter_at: inlet, gives: heat}
+    stream: {fluid: water, flow: FT-201, inlet: TT-20, outlet: 60 °C, pressure: 4 bar, meter_at: inlet, gives: heat}
 `))
 	fmt.Println(err)
 	// Output:

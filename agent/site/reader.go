@@ -15,6 +15,7 @@ type reader struct {
 	file   string
 	tags   map[string]int          // declared names to the index in site.Tags
 	fluids map[string]thermo.Fluid // nil where the declaration is at fault
+	gauge  bool                    // the file has a gauge pressure
 }
 
 func (r *reader) read(v value) {
@@ -34,6 +35,9 @@ func (r *reader) read(v value) {
 	r.readFluids(o)
 	r.readTags(o)
 	r.readLoads(o)
+	if r.gauge {
+		o.need("barometer", "the air pressure at the plant, such as 101.3 kPa: the file has gauge pressures")
+	}
 }
 
 // name reads a text that serves as a label.
@@ -55,13 +59,9 @@ func zone(v value) *time.Location {
 	return z
 }
 
-// standardAtmosphere in Pa stands for the barometer where a site gives none.
-const standardAtmosphere = 101325
-
 // barometer reads the site's air pressure. The limits leave room for any
 // inhabited place: 50 kPa is about 5 500 m above the sea.
 func (r *reader) barometer(o object) {
-	r.site.Barometer = standardAtmosphere
 	v, ok := o.get("barometer")
 	if !ok {
 		return
@@ -74,6 +74,6 @@ func (r *reader) barometer(o object) {
 	case q.SI() < 50e3 || q.SI() > 110e3:
 		v.fault("%v is no pressure of the air; allowed: 50 kPa to 110 kPa, at the plant and not reduced to sea level", q)
 	default:
-		r.site.Barometer, r.site.BarometerGiven = q.SI(), true
+		r.site.Barometer = q.SI()
 	}
 }

@@ -22,17 +22,16 @@ import (
 
 // Site is a checked site file.
 type Site struct {
-	Digest         [32]byte // SHA-256 of the file's text
-	Name           string
-	Zone           *time.Location // of days and months in reports
-	Barometer      float64        // Pa; the standard atmosphere when the file gives none
-	BarometerGiven bool
-	Broker         Broker
-	Fluids         map[string]thermo.Fluid // the declared and the built-in ones
-	Tags           []Tag                   // in file order
-	Loads          []HeatLoad              // in file order
-	Timing         Timing
-	History        History
+	Digest    [32]byte // SHA-256 of the file's text
+	Name      string
+	Zone      *time.Location // of days and months in reports
+	Barometer float64        // Pa; 0 when the file gives none, and then it has no gauge pressure
+	Broker    Broker
+	Fluids    map[string]thermo.Fluid // the declared and the built-in ones
+	Tags      []Tag                   // in file order
+	Loads     []HeatLoad              // in file order
+	Timing    Timing
+	History   History
 }
 
 // Tag is one signal on the broker.

@@ -6,6 +6,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 	"time"
@@ -40,8 +41,8 @@ func TestParse(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if s.Name != "Saltmarsh Laundry" || s.Zone.String() != "Europe/Dublin" || s.Barometer != 100e3 || !s.BarometerGiven {
-		t.Errorf("top: %q, %v, %v Pa, given %v", s.Name, s.Zone, s.Barometer, s.BarometerGiven)
+	if s.Name != "Saltmarsh Laundry" || s.Zone.String() != "Europe/Dublin" || s.Barometer != 100e3 {
+		t.Errorf("top: %q, %v, %v Pa", s.Name, s.Zone, s.Barometer)
 	}
 	want := Broker{URL: "mqtt://127.0.0.1:1883", ClientID: "heatreeve-saltmarsh-laundry"}
 	if s.Broker != want {
@@ -74,7 +75,7 @@ func TestParseTags(t *testing.T) {
 	equal(t, "TT-1 at 212 °F", tt1.Scale*212+tt1.Offset, 373.15)
 	equal(t, "TT-1 low end", tt1.Min, 273.15)
 	equal(t, "TT-1 high end", tt1.Max, 473.15)
-	if tt2.Value != "" || tt2.Time != "" || tt2.TimeFormat != "" || tt2.MaxAge != time.Minute || !math.IsInf(tt2.Min, -1) || !math.IsInf(tt2.Max, 1) {
+	if tt2.Value != "" || tt2.Time != "" || tt2.TimeFormat != "" || tt2.MaxAge != time.Minute || tt2.Min != 0 || tt2.Max != 5000 {
 		t.Errorf("defaults of TT-2 = %+v", tt2)
 	}
 	equal(t, "PT-1 at 3 barg, absolute", pt1.Scale*3+pt1.Offset, 400e3)
@@ -120,10 +121,57 @@ func equal(t *testing.T, what string, got, want float64) {
 	}
 }
 
-func TestStandardAtmosphereWithoutBarometer(t *testing.T) {
-	s, err := Parse("plant.yaml", []byte(strings.Replace(plant, "barometer: 100 kPa\n", "", 1)))
-	if err != nil || s.Barometer != 101325 || s.BarometerGiven || s.Tags[3].Offset != 101325 {
-		t.Errorf("barometer = %v Pa, given %v, %v", s.Barometer, s.BarometerGiven, err)
+func TestGaugePressureNeedsABarometer(t *testing.T) {
+	_, err := Parse("plant.yaml", []byte(strings.Replace(plant, "barometer: 100 kPa\n", "", 1)))
+	if err == nil || !strings.Contains(err.Error(), "barometer") || !strings.Contains(err.Error(), "gauge") {
+		t.Errorf("gauge pressures without a barometer: %v", err)
+	}
+}
+
+// A tag without a range has the bounds of any plant, so that the absurd number of a
+// transmitter without a signal is refused.
+func TestBoundsWithoutARange(t *testing.T) {
+	bare := regexp.MustCompile(`, range: \[[^]]*\]`).ReplaceAllString(plant, "")
+	s, err := Parse("plant.yaml", []byte(bare))
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, tag := range s.Tags {
+		want := [2]float64{0, 5000}
+		switch tag.Unit.Dimension {
+		case unit.Pressure:
+			want = [2]float64{0, 1e9}
+		case unit.MassFlow, unit.VolumeFlow:
+			want = [2]float64{-1e5, 1e5}
+		case unit.MolarFlow:
+			want = [2]float64{-1e7, 1e7}
+		}
+		if tag.Min != want[0] || tag.Max != want[1] {
+			t.Errorf("%s: %g to %g, want %v", tag.Name, tag.Min, tag.Max, want)
+		}
+	}
+}
+
+// Without idle_below nothing flows within half a percent of the meter's range, or
+// within the part of its accuracy that does not depend on the reading.
+func TestIdleBelowByItself(t *testing.T) {
+	const hour = 1.0 / 3600
+	for _, tt := range []struct {
+		tag  string
+		want float64 // m³/s
+	}{
+		{"accuracy: 0.5 % of reading", 0},
+		{"accuracy: 0.5 % of reading, range: [0 m3/h, 40 m3/h]", 0.2 * hour},
+		{"accuracy: 1 % of 40 m3/h, range: [0 m3/h, 40 m3/h]", 0.4 * hour},
+		{"accuracy: 1 % of 40 m3/h", 0.4 * hour},
+	} {
+		s, err := Parse("plant.yaml", []byte("site: X\ntimezone: UTC\nbroker: {url: \"mqtt://127.0.0.1\"}\ntags:\n"+
+			"  T1: {topic: a, unit: °C, accuracy: IEC 60751 A}\n  T2: {topic: b, unit: °C, accuracy: IEC 60751 A}\n  F: {topic: c, unit: m3/h, "+tt.tag+"}\n"+
+			"loads:\n  l: {stream: {fluid: water, flow: F, inlet: T1, outlet: T2, pressure: 4 bar, meter_at: inlet, gives: heat}}\n"))
+		if err != nil {
+			t.Fatal(err)
+		}
+		equal(t, tt.tag, s.Loads[0].Stream.IdleBelow, tt.want)
 	}
 }
 

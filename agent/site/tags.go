@@ -85,17 +85,28 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 	}
 	t.Unit, t.Scale, t.Offset = u, u.Factor, u.Offset
 	if u.Gauge {
-		t.Offset = r.site.Barometer
+		t.Offset, r.gauge = r.site.Barometer, true
 	}
-	if largest, ok := largestFlow[u.Dimension]; ok {
+	switch largest, isFlow := largestFlow[u.Dimension]; {
+	case isFlow:
 		t.Min, t.Max = -largest, largest
+	case u.Dimension == unit.Temperature:
+		t.Min, t.Max = 0, hottest
+	default:
+		t.Min, t.Max = 0, strongest
 	}
 	return true
 }
 
+// What a tag without a range may read, SI: temperatures from absolute zero, absolute
+// pressures from a vacuum, up to what no instrument of a plant shows.
+const (
+	hottest   = 5000 // K
+	strongest = 1e9  // Pa
+)
+
 // largestFlow bounds a flow tag without a range, SI: beyond any pipe, but far below
 // what a transmitter without a signal may send, such as the largest 32-bit float.
-// Temperatures and pressures have the bounds of their fluids.
 var largestFlow = map[unit.Dimension]float64{unit.MassFlow: 1e5, unit.VolumeFlow: 1e5, unit.MolarFlow: 1e7}
 
 // payload reads where in a message the value and its time stand.
@@ -193,6 +204,7 @@ func (r *reader) span(v value, u unit.Unit) (lo, hi float64, ok bool) {
 // absolute is the SI value with the barometer under a gauge pressure.
 func (r *reader) absolute(q unit.Quantity) float64 {
 	if q.Unit.Gauge {
+		r.gauge = true
 		return q.SI() + r.site.Barometer
 	}
 	return q.SI()

@@ -67,10 +67,11 @@ type Broker struct {
 
 // History is the store.
 type History struct {
-	Bytes    int64
-	Failures uint64 // commits that failed since the agent started
-	Fault    string // why the last commit failed; empty when it did not
-	Lost     uint64 // readings given up because the disk took nothing for long
+	Bytes     int64  // in use
+	FileBytes int64  // of the file, free pages included
+	Failures  uint64 // commits that failed since the agent started
+	Fault     string // why the last commit failed; empty when it did not
+	Lost      uint64 // readings given up because the disk took nothing for long
 	// LostMinutes are minute records given up likewise.
 	LostMinutes uint64
 }

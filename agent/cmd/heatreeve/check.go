@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"fmt"
+	"os"
 
 	"heatreeve/agent/site"
 )
@@ -15,9 +16,12 @@ func runCheck(_ context.Context, c *call) error {
 	if err != nil {
 		return err
 	}
-	fmt.Fprintf(c.stdout, "%s: good: %q, %d tags, %d loads\n", c.flags.Arg(0), s.Name, len(s.Tags), len(s.Loads))
+	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.flags.Arg(0), s.Name, len(s.Tags), len(s.Loads))
 	for _, l := range s.Loads {
 		fmt.Fprintf(c.stdout, "  %s: %s, %s\n", l.Name, l.Stream.FluidName, l.Stream.Fluid.Source())
+	}
+	for _, note := range notes(s) {
+		fmt.Fprintln(c.stdout, "note:", note)
 	}
 	return nil
 }
@@ -29,4 +33,43 @@ func load(path string) (*site.Site, error) {
 		return nil, usageError{err}
 	}
 	return s, nil
+}
+
+// notes are what is no fault of the file, but may be one on the machine that the
+// agent will run on, or an oversight.
+func notes(s *site.Site) []string {
+	var all []string
+	for _, f := range [...]struct{ key, path string }{
+		{"ca", s.Broker.CAFile}, {"certificate", s.Broker.CertFile}, {"key", s.Broker.KeyFile}, {"password_file", s.Broker.PasswordFile},
+	} {
+		if f.path == "" {
+			continue
+		}
+		if _, err := os.Stat(f.path); err != nil {
+			all = append(all, fmt.Sprintf("broker.%s: %v; the agent needs it where it runs", f.key, err))
+		}
+	}
+	if env := s.Broker.PasswordEnv; env != "" && os.Getenv(env) == "" {
+		all = append(all, fmt.Sprintf("broker.password_env: %s is not set here; the agent needs it where it runs", env))
+	}
+	return append(all, idleTags(s)...)
+}
+
+// idleTags are the tags that no load reads.
+func idleTags(s *site.Site) []string {
+	used := make([]bool, len(s.Tags))
+	for _, l := range s.Loads {
+		for _, src := range []site.Source{l.Stream.Flow, l.Stream.Inlet, l.Stream.Outlet, l.Stream.Pressure, l.Stream.OutletPressure} {
+			if !src.Constant() {
+				used[src.Tag] = true
+			}
+		}
+	}
+	var all []string
+	for i, t := range s.Tags {
+		if !used[i] {
+			all = append(all, fmt.Sprintf("tags.%s: no load reads it; its readings are only stored", t.Name))
+		}
+	}
+	return all
 }

@@ -70,7 +70,7 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 			if s.Broker.Topics > 0 {
 				heard()
 			}
-			if s.At != 0 { // something has come
+			if s.At != 0 && s.Broker.Topics > 0 { // something has come
 				display.Show(s)
 			}
 		},
@@ -95,8 +95,8 @@ func speak(ctx context.Context, d *demo.Demo, subscribed <-chan struct{}) error 
 }
 
 func (c *call) whereToLook(d *demo.Demo, at net.Addr) {
-	fmt.Fprintf(c.stdout, "%s, an invented plant, on a broker of its own at %s\n", d.Site.Name, d.Broker.URL())
-	fmt.Fprintf(c.stdout, "metrics: http://%s/metrics\nhealth:  http://%s/readyz\n%s\n\n", at, at, agent.Safety)
+	fmt.Fprintf(c.stdout, "%s, an invented plant, with a broker of its own at\n%s\n\n", d.Site.Name, d.Broker.URL())
+	fmt.Fprintf(c.stdout, "loads:   http://%s/\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n\n%s\n\n", at, at, at, agent.Safety)
 }
 
 // display is the table of the loads: drawn over in a terminal, and from time to

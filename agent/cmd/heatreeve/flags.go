@@ -31,8 +31,7 @@ func (c *call) parse(wanted int, what string) error {
 }
 
 func (c *call) help() {
-	usage := strings.TrimSpace("heatreeve " + c.name + " " + c.operand)
-	fmt.Fprintf(c.stdout, "%s\n\n%s.\n", usage, strings.ToUpper(c.about[:1])+c.about[1:])
+	fmt.Fprintf(c.stdout, "%s\n\n%s.\n", c.usage(), strings.ToUpper(c.about[:1])+c.about[1:])
 	first := true
 	c.flags.VisitAll(func(f *flag.Flag) {
 		if first {

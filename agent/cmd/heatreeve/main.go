@@ -10,6 +10,7 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"strings"
 	"syscall"
 
 	"heatreeve/agent"
@@ -62,12 +63,19 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	ctx, stop := signal.NotifyContext(ctx, os.Interrupt, syscall.SIGTERM)
 	defer stop()
 	context.AfterFunc(ctx, stop) // after the first signal, a second one kills at once
-	if len(args) == 0 || args[0] == "help" || args[0] == "-h" || args[0] == "--help" {
+	if len(args) == 0 {
 		usage(stdout)
-		if len(args) == 0 {
-			return exitWrong
+		return exitWrong
+	}
+	switch args[0] {
+	case "help", "-h", "--help":
+		if len(args) == 1 {
+			usage(stdout)
+			return exitGood
 		}
-		return exitGood
+		args = []string{args[1], "--help"}
+	case "-v", "--version":
+		args = []string{"version"}
 	}
 	for _, c := range commands {
 		if c.name == args[0] {
@@ -101,10 +109,13 @@ func status(err error, stderr io.Writer) int {
 	return exitFailed
 }
 
+// usage is the command's line of usage.
+func (c command) usage() string { return strings.TrimSpace("heatreeve " + c.name + " " + c.operand) }
+
 func usage(w io.Writer) {
 	fmt.Fprint(w, "heatreeve turns MQTT temperature, flow and pressure tags into live sensible heat loads.\n\n")
 	for _, c := range commands {
-		fmt.Fprintf(w, "  heatreeve %s %s\n        %s\n", c.name, c.operand, c.about)
+		fmt.Fprintf(w, "  %s\n        %s\n", c.usage(), c.about)
 	}
 	fmt.Fprintf(w, "\n  heatreeve COMMAND --help tells the options of one.\n\nExit status: 0 good, 1 failed, 2 wrong usage or wrong file.\n\n%s\n", agent.Safety)
 }

@@ -14,6 +14,7 @@ import (
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/site"
 	"heatreeve/configs"
+	"heatreeve/ingest"
 )
 
 func readme(t *testing.T) string {
@@ -70,6 +71,26 @@ func TestReadmeSiteFileIsGood(t *testing.T) {
 	}
 }
 
+// The reasons to refuse a message that the README lists are those that there are.
+func TestReadmeNamesTheReasons(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "The reasons: ")
+	list, _, closed := strings.Cut(rest, "\n\n")
+	if !ok || !closed {
+		t.Fatal("the README lists no reasons")
+	}
+	var said, have []string
+	for _, m := range regexp.MustCompile("`([a-z-]+)`").FindAllStringSubmatch(list, -1) {
+		said = append(said, m[1])
+	}
+	for _, r := range ingest.Reasons() {
+		have = append(have, r.String())
+	}
+	have = append(have, "crowded") // the engine's own
+	if !slices.Equal(said, have) {
+		t.Errorf("the program has %v,\nthe README lists %v", have, said)
+	}
+}
+
 // The number of worked examples that the README claims is that of the file which a
 // test of thermo runs through.
 func TestReadmeCountsTheWorkedExamples(t *testing.T) {
@@ -88,7 +109,7 @@ func TestReadmeCountsTheWorkedExamples(t *testing.T) {
 func TestReadmeAgreesWithTheProgram(t *testing.T) {
 	text := readme(t)
 	flat := strings.Join(strings.Fields(strings.ReplaceAll(text, "> ", "")), " ")
-	for _, want := range []string{"`" + defaultListen + "`", agent.Safety} {
+	for _, want := range []string{"`" + defaultListen + "`", strings.Join(strings.Fields(agent.Safety), " ")} {
 		if !strings.Contains(flat, want) {
 			t.Errorf("the README does not say %q", want)
 		}
