@@ -33,6 +33,7 @@ type rhythm struct {
 	trimmed   time.Time
 	window    window
 	told      bool   // that the broker waits
+	inMemory  bool   // messages were acknowledged that are not on disk
 	late      []bool // tags whose first late reading has been told
 }
 
@@ -83,8 +84,10 @@ func (a *Agent) look(r *rhythm, system time.Time) {
 // has stopped sending, and the loads would go blind. What the accounts hold goes
 // into the next checkpoint; a crash before it loses it.
 func (a *Agent) goOn(r *rhythm) {
-	a.o.Log.Warn("the disk takes nothing and the broker waits: going on in memory; a crash now would lose what has come since the last commit", "messages", len(r.unacked))
-	r.books.forced = true
+	if !r.inMemory {
+		a.o.Log.Warn("the disk takes nothing and the broker waits: going on in memory; a crash now would lose what has come since the last commit")
+	}
+	r.inMemory, r.books.forced = true, true
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]
 	r.window.failed()
@@ -152,6 +155,10 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 		}
 		return false
 	}
+	if r.inMemory {
+		a.o.Log.Info("the history is written again")
+	}
+	r.inMemory = false
 	r.window.committed(a.session.Waiting())
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]

@@ -233,3 +233,30 @@ func TestLedgerOnAFullDisk(t *testing.T) {
 		t.Errorf("checkpoint written: %v, %v; readings were given up, so it must be", ok, err)
 	}
 }
+
+// On a disk that is full at the start the agent makes what room it can, and starts
+// in any case; the fault is told.
+func TestLedgerStartsOnAFullDisk(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	s := parsed(t, benchSite)
+	tight := store.Options{MaxBytes: 1 << 20, MaxFile: 1 << 20}
+	l, shut := open(t, s, path, tight)
+	for at := int64(0); l.failures == 0; at++ {
+		in := make([]ingest.Reading, 3000)
+		for i := range in {
+			in[i] = ingest.Reading{Tag: i % 3, At: clock.UnixNano() + at*sec + int64(i)*7919, Value: 300 + float64(i)*0.1234567891 + float64(at)*0.987654321}
+		}
+		l.beat(in, clock.UnixNano()+(at-5)*sec)
+		l.commit(clock, at%10 == 0)
+	}
+	before := l.committed[0]
+	shut()
+	l, shut = open(t, s, path, tight)
+	defer shut()
+	if got := l.registers()[0]; got.Given < before.Given || got.Measured < before.Measured {
+		t.Errorf("starts with %+v, the last commit had %+v", got, before)
+	}
+	if l.fault != "" && l.committed[0] != l.registers()[0] {
+		t.Errorf("shows %+v, has %+v", l.committed[0], l.registers()[0])
+	}
+}

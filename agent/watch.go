@@ -30,8 +30,8 @@ func newWatch(log *slog.Logger, loads int) *watch {
 	return &watch{log: log, told: make([]told, loads)}
 }
 
-// look tells what has changed since it was last told. At the start nothing is told
-// of loads that have had no reading yet.
+// look tells what has changed since it was last told, of loads that have been
+// computed at least once.
 func (w *watch) look(s *view.Snapshot, now time.Time) {
 	for i := range s.Loads {
 		figure, verdict := s.Current(i, now.UnixNano())
@@ -39,7 +39,7 @@ func (w *watch) look(s *view.Snapshot, now time.Time) {
 		if !notable(t.verdict) && !notable(verdict) || verdict == t.verdict && figure.Reason == t.reason {
 			continue
 		}
-		if s.At == 0 || now.Sub(t.at) < tellEvery {
+		if s.Loads[i].Figure.At == 0 || now.Sub(t.at) < tellEvery {
 			continue
 		}
 		*t = told{verdict, figure.Reason, now}

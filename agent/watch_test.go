@@ -32,11 +32,11 @@ func TestWatchTellsWhatChanges(t *testing.T) {
 		{300 * time.Second, design.Holding, "", ""},
 	} {
 		out.Reset()
-		figure := loads.Figure{Duty: 100e3}
+		figure := loads.Figure{At: 1, Duty: 100e3}
 		if tt.verdict == design.Blind {
-			figure = loads.Figure{Fault: loads.Stale, Reason: tt.reason}
+			figure = loads.Figure{At: 1, Fault: loads.Stale, Reason: tt.reason}
 		}
-		s := &view.Snapshot{At: 1, Loads: []view.Load{{Name: "hall", Figure: figure, Until: 1 << 62, Design: 200e3, Allow: 0.08, Verdict: tt.verdict}}}
+		s := &view.Snapshot{Loads: []view.Load{{Name: "hall", Figure: figure, Until: 1 << 62, Design: 200e3, Allow: 0.08, Verdict: tt.verdict}}}
 		w.look(s, clock.Add(tt.at))
 		if got := out.String(); tt.want == "" && got != "" || !strings.Contains(got, tt.want) {
 			t.Errorf("%v, %v: told %q, want %q", tt.at, tt.verdict, got, tt.want)
