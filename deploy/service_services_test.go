@@ -129,6 +129,7 @@ func TestServiceReadsThroughTheBroker(t *testing.T) {
 		"url: mqtts://127.0.0.1:%s, ca: %s/ca.crt, certificate: %s/client.crt, key: %s/client.key, username: heatreeve, password_file: %s",
 		b.portTLS, certs, certs, certs, password)))
 	service.eventually(t, func() error {
+		must(t, "mosquitto_pub", b.plant("-t", "creamery/hw/TT-201", "-m", "no number")...) // a tag shows the reasons it has met
 		for tag, value := range map[string]string{"TT-201": "80", "TT-202": "60", "FT-201": "12"} {
 			must(t, "mosquitto_pub", b.plant("-t", "creamery/hw/"+tag, "-m", value)...)
 		}
