@@ -19,6 +19,11 @@ const (
 	// eagerReadings is how many readings are committed without waiting for the
 	// interval.
 	eagerReadings = 20_000
+	// pieceReadings is how many readings go through the accounts at one time.
+	pieceReadings = 1000
+	// mostLag bounds how far behind the clock stamps may lag for a figure still to
+	// count as live: beyond it is not a slow clock but an old message.
+	mostLag = 2 * time.Minute
 )
 
 // rhythm is the state of the beat's loop.
@@ -42,7 +47,7 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	notify("READY=1")
 	defer notify("STOPPING=1")
 	now := time.Now()
-	r := &rhythm{pace: pace{lateness: a.site.Timing.Lateness, stamped: hasStamps(a.site)}, books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
+	r := &rhythm{pace: newPace(a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)), books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
 	r.pace.through = books.accounts.engine.Snapshot().Through
 	if ahead := time.Unix(0, r.pace.through).Sub(a.o.Now()); ahead > a.site.Timing.Ahead {
 		a.o.Log.Error("the history stands in the future of this machine's clock; until the clock has come there, every reading is late. Set the clock, or give another data folder", "history", time.Unix(0, r.pace.through).UTC(), "ahead", ahead.Round(time.Second))
@@ -122,20 +127,36 @@ func (a *Agent) last(r *rhythm) error {
 	return nil
 }
 
+// take puts what came through the accounts, in pieces, so that event time keeps up
+// with a backlog and no more than the lateness of it ever waits.
 func (a *Agent) take(r *rhythm) {
 	now := a.o.Now()
 	r.received = a.session.Take(r.received[:0])
+	r.stats = a.session.Stats()
+	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
+	for rest := r.received; ; {
+		piece := rest[:min(len(rest), pieceReadings)]
+		rest = rest[len(piece):]
+		a.note(r, piece, now)
+		r.books.beat(r.readings, r.pace.advance(now, r.stats.Connected, heldBack))
+		if len(rest) == 0 {
+			return
+		}
+	}
+}
+
+// note tells the pace of what came, and keeps what is to be acknowledged.
+func (a *Agent) note(r *rhythm, piece []ingest.Received, now time.Time) {
 	r.readings = r.readings[:0]
-	for _, x := range r.received {
+	for _, x := range piece {
 		r.readings = append(r.readings, x.Reading)
-		r.pace.reading(x.At, x.Stamped, x.InOrder, now)
+		if !x.Retained {
+			r.pace.reading(x.At, x.Stamped, x.InOrder, now)
+		}
 		if x.Acknowledgeable() {
 			r.unacked = append(r.unacked, x)
 		}
 	}
-	r.stats = a.session.Stats()
-	through := r.pace.advance(now, r.stats.Connected, a.session.Waiting() > 0)
-	r.books.beat(r.readings, through)
 }
 
 func (a *Agent) due(r *rhythm, system time.Time) bool {
@@ -147,12 +168,12 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 	r.committed = system
 	begun := time.Now()
 	err := r.books.commit(system, checkpoint)
+	if store.IsFull(err) && r.books.makeRoom(r.pace.through) {
+		err = r.books.commit(system, checkpoint)
+	}
 	a.commits.Observe(time.Since(begun).Seconds())
 	if err != nil {
 		r.window.failed()
-		if store.IsFull(err) {
-			r.trimmed = time.Time{} // make room at once
-		}
 		return false
 	}
 	if r.inMemory {
@@ -172,7 +193,8 @@ func (a *Agent) publish(r *rhythm) {
 	v := &view.Snapshot{
 		Site:  a.site.Name,
 		At:    s.Through,
-		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + r.pace.lag.least(),
+		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
+		Lag:   r.pace.lag.least(),
 		Loads: make([]view.Load, len(s.Loads)),
 		Tags:  make([]view.Tag, len(s.Tags)),
 		Broker: view.Broker{

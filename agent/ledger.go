@@ -72,16 +72,28 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 // there is any to make; where there is none, the agent starts all the same, and says
 // that its history is not written.
 func (l *ledger) first(now time.Time) error {
+	l.forced = true
 	for {
 		err := l.commit(now, true)
 		if err == nil || !store.IsFull(err) {
 			return err
 		}
-		t, trimErr := l.store.Trim(l.accounts.engine.Snapshot().Through)
-		if trimErr != nil || t.Readings+t.Minutes == 0 {
+		if !l.makeRoom(l.accounts.engine.Snapshot().Through) {
 			return nil
 		}
 	}
+}
+
+// makeRoom gives up the oldest records of a full history, and reports whether there
+// were any to give up.
+func (l *ledger) makeRoom(now int64) bool {
+	t, err := l.store.Trim(now)
+	if err != nil {
+		l.log.Error("history is not trimmed", "error", err)
+		return false
+	}
+	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes)
+	return t.Readings+t.Minutes > 0
 }
 
 func names[T any](all []T, name func(T) string) []string {
@@ -102,13 +114,13 @@ func (l *ledger) resume() error {
 	if err != nil {
 		return err
 	}
-	l.take(known)
 	state, ok, err := l.store.Checkpoint()
 	if err != nil {
 		return err
 	}
-	same := true
+	same := true // without a checkpoint there is nothing but the beats
 	if ok {
+		l.take(known)
 		if same, err = l.accounts.restore(state); err != nil {
 			return err
 		}
@@ -146,6 +158,7 @@ func (l *ledger) replay(compute bool) error {
 			l.accounts.engine.Adopt(beat)
 		}
 	}
+	l.accounts.engine.ClearTally()
 	return nil
 }
 
@@ -222,7 +235,7 @@ func nanoseconds(s float64) int64 { return int64(math.Round(s*1e3)) * 1e6 }
 // bound gives up the oldest readings when the disk has taken nothing for long.
 // The accounts have them; a checkpoint carries those on.
 func (l *ledger) bound() {
-	for l.waiting > maxUncommitted {
+	for l.waiting > maxUncommitted || len(l.batch.Beats) > maxUncommitted {
 		n := len(l.batch.Beats[0].Readings)
 		l.waiting -= n
 		l.lost += uint64(n)

@@ -8,6 +8,7 @@ import (
 	"time"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/agent/view"
 	"heatreeve/ingest"
@@ -258,5 +259,26 @@ func TestLedgerStartsOnAFullDisk(t *testing.T) {
 	}
 	if l.fault != "" && l.committed[0] != l.registers()[0] {
 		t.Errorf("shows %+v, has %+v", l.committed[0], l.registers()[0])
+	}
+}
+
+// What a restart puts through again is not counted again.
+func TestLedgerCountsOnce(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	s := parsed(t, benchSite)
+	l, shut := open(t, s, path, store.Options{})
+	feed(l, 0, 100)
+	feed(l, 40, 60) // late and repeated
+	if before := l.accounts.engine.Snapshot().Tags[0].Tally; before.Repeated+before.Late == 0 {
+		t.Fatal("nothing late or repeated: the course does not show anything")
+	}
+	if err := l.commit(clock, false); err != nil {
+		t.Fatal(err)
+	}
+	shut()
+	l, shut = open(t, s, path, store.Options{})
+	defer shut()
+	if got := l.accounts.engine.Snapshot().Tags[0].Tally; got != (loads.Tally{}) {
+		t.Errorf("tally %+v after a restart, want none", got)
 	}
 }

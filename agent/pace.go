@@ -6,10 +6,15 @@ import (
 )
 
 const (
-	// quiet is how long the session must have been up and silent before the
+	// leastQuiet is how long the session must have been up and silent before the
 	// clock alone moves event time: long enough for a broker to deliver what it
-	// kept for us.
-	quiet = 15 * time.Second
+	// kept for us. A broker that waits for an acknowledgement is silent from one
+	// commit to the next, so quiet is longer than that.
+	leastQuiet   = 15 * time.Second
+	beyondCommit = 5 * time.Second
+	// firstReach is how far behind the clock event time may begin: a stray stamp of
+	// a clock that was never set must not open years of missing time.
+	firstReach = 24 * time.Hour
 	// lagSpan is how long the least lag of the stamps behind the clock counts.
 	lagSpan = 10 * time.Minute
 )
@@ -27,7 +32,8 @@ const (
 // guarantee or a retained one overtakes what is still kept for us.
 type pace struct {
 	lateness time.Duration
-	stamped  bool // the site has tags with source stamps
+	quiet    time.Duration // silence after which the clock takes over
+	stamped  bool          // the site has tags with source stamps
 	newest   int64
 	through  int64
 	heard    time.Time // when readings that lead last came, or the session last opened
@@ -50,19 +56,27 @@ func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
 }
 
 // advance returns the instant up to which event time has come at the clock's
-// now. Waiting says that messages are held back for want of an acknowledgement,
-// so that silence means nothing. In a silence time goes by as it is measured
+// now. HeldBack says that the broker keeps messages back for want of an
+// acknowledgement, so that silence means nothing. In a silence time goes by as it is measured
 // between two looks at the clock, so that setting the clock moves nothing.
-func (p *pace) advance(now time.Time, connected, waiting bool) int64 {
-	if connected != p.open || !connected || waiting {
+func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
+	if connected != p.open || !connected || heldBack {
 		p.open, p.heard = connected, now
 	}
 	to := min(p.newest, now.UnixNano())
-	if silence := now.Sub(p.heard); p.open && silence >= quiet {
+	if silence := now.Sub(p.heard); p.open && silence >= p.quiet {
 		to = max(to, p.heard.UnixNano()+int64(silence)-p.lag.least())
+	}
+	if p.through <= 0 && p.newest > 0 {
+		to = max(to, now.Add(-firstReach).UnixNano())
 	}
 	p.through = max(p.through, to-int64(p.lateness))
 	return p.through
+}
+
+// newPace returns the pace of a site with the given lateness and commit interval.
+func newPace(lateness, commit time.Duration, stamped bool) pace {
+	return pace{lateness: lateness, quiet: max(leastQuiet, commit+beyondCommit), stamped: stamped}
 }
 
 // lag keeps the least lag of stamps behind the clock, ns, over this lagSpan in

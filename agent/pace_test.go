@@ -10,7 +10,7 @@ const sec = int64(time.Second)
 func wall(ns int64) time.Time { return time.Unix(0, ns) }
 
 func TestPaceFollowsTheStamps(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1000*sec, true, true, wall(1001*sec))
 	if got := p.advance(wall(1001*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995", got/sec)
@@ -22,7 +22,7 @@ func TestPaceFollowsTheStamps(t *testing.T) {
 }
 
 func TestPaceIsNotLedByAFastClock(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1025*sec, true, true, wall(1000*sec))
 	if got := p.advance(wall(1000*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995: our own clock bounds it", got/sec)
@@ -30,7 +30,7 @@ func TestPaceIsNotLedByAFastClock(t *testing.T) {
 }
 
 func TestPaceIsNotLedByArrivalsWhereSomeAreStamped(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(500*sec, true, true, wall(1000*sec))   // the broker's backlog
 	p.reading(1000*sec, false, true, wall(1000*sec)) // a bare number among it
 	if got := p.advance(wall(1000*sec), true, false); got != 495*sec {
@@ -39,7 +39,7 @@ func TestPaceIsNotLedByArrivalsWhereSomeAreStamped(t *testing.T) {
 }
 
 func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1000*sec, true, true, wall(1000*sec))
 	p.advance(wall(1000*sec), true, false)
 	if got := p.advance(wall(1014*sec), true, false); got != 995*sec {
@@ -61,7 +61,7 @@ func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
 }
 
 func TestWaitingMessagesAreNoSilence(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1000*sec, true, true, wall(1000*sec))
 	for s := int64(1000); s < 1100; s++ {
 		p.advance(wall(s*sec), true, true)
@@ -73,7 +73,7 @@ func TestWaitingMessagesAreNoSilence(t *testing.T) {
 
 // Stamps two minutes behind our clock stay in time through a silence.
 func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	for s := int64(1000); s <= 1060; s += 10 {
 		p.reading((s-120)*sec, true, true, wall(s*sec))
 		p.advance(wall(s*sec), true, false)
@@ -88,7 +88,7 @@ func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
 
 // What the broker kept lags far, but what follows it does not: the least counts.
 func TestBacklogIsNoSlowClock(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	for s := int64(0); s <= 1000; s += 10 {
 		p.reading(s*sec, true, true, wall(1001*sec))
 	}
@@ -116,7 +116,7 @@ func TestLagIsForgotten(t *testing.T) {
 // A bare number keeps coming while the stamped publisher is dead: time goes on by
 // the clock all the same.
 func TestBareNumbersDoNotHideASilence(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1000*sec, true, true, wall(1000*sec))
 	for s := int64(1001); s <= 1100; s++ {
 		p.reading(s*sec, false, true, wall(s*sec))
@@ -130,7 +130,7 @@ func TestBareNumbersDoNotHideASilence(t *testing.T) {
 // A live message without delivery guarantee, or a retained one, overtakes what the
 // broker kept, and must not make it late.
 func TestWhatOvertakesDoesNotLead(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	p.reading(1000*sec, true, false, wall(1000*sec))
 	p.reading(400*sec, true, true, wall(1000*sec))
 	if got := p.advance(wall(1000*sec), true, false); got != 395*sec {
@@ -140,12 +140,39 @@ func TestWhatOvertakesDoesNotLead(t *testing.T) {
 
 // Where nothing else comes, such messages do not stop time.
 func TestOnlyWithoutGuarantee(t *testing.T) {
-	p := pace{lateness: 5 * time.Second, stamped: true}
+	p := newPace(5*time.Second, 10*time.Second, true)
 	for s := int64(1000); s <= 1100; s++ {
 		p.reading((s-30)*sec, true, false, wall(s*sec))
 		p.advance(wall(s*sec), true, false)
 	}
 	if want := (1100 - 30 - 5) * sec; p.through != want {
 		t.Errorf("through %d s, want %d: by the clock, set back by the lag", p.through/sec, want/sec)
+	}
+}
+
+// Two stray stamps of 2000, one a beat, then real ones: event time begins a day back
+// at most.
+func TestStrayStampsDoNotBeginIn2000(t *testing.T) {
+	p := newPace(5*time.Second, 10*time.Second, true)
+	now := int64(1_700_000_000) * sec
+	for s := range int64(2) {
+		p.reading((946_684_800+10*s)*sec, true, true, wall(now+s*sec))
+		if got, least := p.advance(wall(now+s*sec), true, false), now-int64(firstReach)-6*sec; got < least {
+			t.Errorf("through %d s, want at least %d", got/sec, least/sec)
+		}
+	}
+}
+
+// A commit interval longer than the usual quiet lengthens it: a broker may wait that
+// long for an acknowledgement.
+func TestQuietIsLongerThanACommit(t *testing.T) {
+	p := newPace(5*time.Second, time.Minute, true)
+	p.reading(1000*sec, true, true, wall(1000*sec))
+	p.advance(wall(1000*sec), true, false)
+	if got := p.advance(wall(1064*sec), true, false); got != 995*sec {
+		t.Errorf("through %d s after 64 s of silence, want 995", got/sec)
+	}
+	if got := p.advance(wall(1065*sec), true, false); got != 1060*sec {
+		t.Errorf("through %d s after 65 s of silence, want 1060", got/sec)
 	}
 }

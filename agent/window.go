@@ -44,7 +44,7 @@ func (w *window) committed(n int) {
 
 // failed notes that a commit could not be made: the broker's silence means nothing
 // until one is.
-func (w *window) failed() { w.eager, w.early, w.acked = false, false, 0 }
+func (w *window) failed() { w.eager, w.early, w.acked, w.silent = false, false, 0, 0 }
 
 // look takes in how many messages wait now, and reports whether to commit for the
 // broker's sake.

@@ -26,4 +26,7 @@ type Reading struct {
 	// what it has for this session: QoS 1 and not retained. Others overtake what
 	// is still kept. A [Decoder] leaves it false; a [Session] sets it.
 	InOrder bool
+	// Retained says that the broker had kept the message for newcomers, so that its
+	// stamp tells nothing of the present. A [Session] sets it.
+	Retained bool
 }

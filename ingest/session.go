@@ -144,9 +144,9 @@ func (s *Session) receive(ctx context.Context, m mqtt.Message) {
 	var ack acknowledger
 	if m.Qos() > 0 {
 		ack = m
-		for i := range out {
-			out[i].InOrder = !m.Retained()
-		}
+	}
+	for i := range out {
+		out[i].InOrder, out[i].Retained = ack != nil && !m.Retained(), m.Retained()
 	}
 	if !s.inbox.put(ctx, ack, out) {
 		s.overflow(out, m.Payload(), arrival)

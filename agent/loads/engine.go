@@ -106,10 +106,18 @@ func (e *Engine) Adopt(b Beat) {
 		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
 	}
 	e.through = max(e.through, b.Through)
-	if e.next != 0 || e.begin() {
-		e.next = max(e.next, floor(e.through, e.cfg.Grid))
+	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin()) && next > e.next {
+		e.next = next
+		e.reach(next)
+		for i := range e.loads {
+			e.loads[i].Minute.Begun = false // the part that it holds was booked elsewhere
+		}
 	}
 }
+
+// ClearTally forgets what has become of readings so far: after a restart, that of the
+// beats put through again.
+func (e *Engine) ClearTally() { clear(e.tally) }
 
 // booked returns the newest grid point computed, or a time before all others.
 func (e *Engine) booked() int64 {
@@ -132,7 +140,7 @@ func (e *Engine) count(tag int, r Receipt) {
 
 // reachBack is how long before event time the accounts may begin: a stray stamp of
 // a clock that was never set must not open years of missing time.
-const reachBack = 24 * 60 * minute
+const reachBack = 60 * minute
 
 // begin sets the first grid point once event time has reached the earliest
 // reading, at most reachBack before event time; without any reading the accounts

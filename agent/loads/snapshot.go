@@ -14,7 +14,8 @@ type LoadState struct {
 	Figure Figure // at the last grid point
 	// Until is when the first input that the figure needs runs out of age, counted
 	// from the newest reading of each tag, also one that event time has not
-	// reached; MaxInt64 for constants alone.
+	// reached, but at most from the figure's own grid point; MaxInt64 for constants
+	// alone.
 	Until             int64
 	Means             [len(Windows)]Mean
 	Given, Taken      float64
@@ -55,7 +56,8 @@ func (e *Engine) until(load int) int64 {
 	for _, src := range needs {
 		if src.Tag >= 0 {
 			t := &e.tags[src.Tag]
-			until = min(until, max(t.Held.At, t.Newest)+e.cfg.Tags[src.Tag].MaxAge)
+			newest := min(max(t.Held.At, t.Newest), e.loads[load].figure.At)
+			until = min(until, newest+e.cfg.Tags[src.Tag].MaxAge)
 		}
 	}
 	return until

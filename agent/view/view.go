@@ -4,7 +4,9 @@
 package view
 
 import (
+	"fmt"
 	"math"
+	"time"
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
@@ -14,6 +16,7 @@ import (
 type Snapshot struct {
 	Site    string
 	At      int64 // event time: every interval that ends by then is accounted for
+	Lag     int64 // how far the stamps have lately lagged behind the clock at least, ns
 	Slack   int64 // how long a reading may be on its way into a figure in good order, ns
 	Loads   []Load
 	Tags    []Tag
@@ -82,9 +85,18 @@ type History struct {
 func (s *Snapshot) Current(i int, now int64) (loads.Figure, design.Verdict) {
 	l := &s.Loads[i]
 	if l.Figure.Measured() && s.out(l, now) {
-		return loads.Figure{At: l.Figure.At, Fault: loads.Stale, Reason: "no reading has come in time to hold the figure"}, design.Blind
+		return loads.Figure{At: l.Figure.At, Fault: loads.Stale, Reason: s.why()}, design.Blind
 	}
 	return l.Figure, l.Verdict
+}
+
+// why says why a figure that was measured is not shown.
+func (s *Snapshot) why() string {
+	const none = "no reading has come in time to hold the figure"
+	if lag := time.Duration(s.Lag); lag > time.Minute {
+		return fmt.Sprintf("%s: stamps lag %v behind this machine's clock; check the publishers' clocks and time zones", none, lag.Round(time.Second))
+	}
+	return none
 }
 
 // out tells whether the load's inputs have run out of age.
@@ -93,14 +105,14 @@ func (s *Snapshot) out(l *Load, now int64) bool {
 }
 
 // Mean returns the rolling mean k of load i as it may be shown at the instant now.
-// Once the load's inputs have run out of age, the time since then counts as not
-// measured, though event time stands still: the coverage falls, and is 0 when the
-// window has passed.
+// Once the load's inputs have run out of age, the time since then that is not
+// accounted for yet counts as not measured: the coverage falls though event time
+// stands still, and is 0 when the window has passed.
 func (s *Snapshot) Mean(i, k int, now int64) loads.Mean {
 	l := &s.Loads[i]
 	m := l.Means[k]
 	if s.out(l, now) {
-		since := now - l.Until - s.Slack
+		since := max(0, now-max(l.Until, s.At)-s.Slack)
 		m.Coverage *= max(0, 1-float64(since)/float64(loads.Windows[k]))
 	}
 	return m

@@ -2,6 +2,7 @@ package view
 
 import (
 	"math"
+	"strings"
 	"testing"
 
 	"heatreeve/agent/design"
@@ -43,5 +44,22 @@ func TestMeanFadesWhenNothingComes(t *testing.T) {
 		if m := s.Mean(0, tt.k, tt.now*second); math.Abs(m.Coverage-tt.want) > 1e-12 {
 			t.Errorf("window %d at %d s: coverage %g, want %g", tt.k, tt.now, m.Coverage, tt.want)
 		}
+	}
+}
+
+// Where event time goes on, the missing time is booked already and counts once.
+func TestMeanCountsMissingTimeOnce(t *testing.T) {
+	s := snapshot(100 * second)
+	s.At = 400 * second
+	if m := s.Mean(0, 1, 407*second); m.Coverage != 0.5 {
+		t.Errorf("coverage %g, want the 0.5 that was booked", m.Coverage)
+	}
+}
+
+func TestReasonTellsOfSlowClocks(t *testing.T) {
+	s := snapshot(100 * second)
+	s.Lag = 3600 * second
+	if f, _ := s.Current(0, 200*second); !strings.Contains(f.Reason, "1h0m0s behind") {
+		t.Errorf("reason %q, want the lag of an hour in it", f.Reason)
 	}
 }
