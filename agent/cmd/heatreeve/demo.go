@@ -7,6 +7,7 @@ import (
 	"log/slog"
 	"net"
 	"os"
+	"slices"
 	"sync"
 	"time"
 
@@ -61,6 +62,7 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	}
 	defer d.Close()
 	display := c.display(d)
+	seen := false // a first figure; before it there is nothing to show
 	subscribed := make(chan struct{})
 	heard := sync.OnceFunc(func() { close(subscribed) })
 	a, err := agent.New(d.Site, agent.Options{
@@ -70,7 +72,7 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 			if s.Broker.Topics > 0 {
 				heard()
 			}
-			if s.At != 0 && s.Broker.Topics > 0 { // something has come
+			if seen = seen || anyMeasured(s); seen {
 				display.Show(s)
 			}
 		},
@@ -82,6 +84,10 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	g.Go(func() error { return a.Run(ctx) })
 	g.Go(func() error { return speak(ctx, d, subscribed) })
 	return g.Wait()
+}
+
+func anyMeasured(s *view.Snapshot) bool {
+	return slices.ContainsFunc(s.Loads, func(l view.Load) bool { return l.Figure.Measured() })
 }
 
 // speak lets the plant publish once somebody listens.
