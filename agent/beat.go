@@ -3,12 +3,8 @@ package agent
 import (
 	"context"
 	"fmt"
-	"os"
-	"path/filepath"
 	"time"
 
-	"heatreeve/agent/loads"
-	"heatreeve/agent/view"
 	"heatreeve/ingest"
 	"heatreeve/store"
 )
@@ -47,11 +43,12 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	notify("READY=1")
 	defer notify("STOPPING=1")
 	now := time.Now()
-	r := &rhythm{pace: newPace(a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)), books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags))}
-	r.pace.through = books.accounts.engine.Snapshot().Through
-	if ahead := time.Unix(0, r.pace.through).Sub(a.o.Now()); ahead > a.site.Timing.Ahead {
-		a.o.Log.Error("the history stands in the future of this machine's clock; until the clock has come there, every reading is late. Set the clock, or give another data folder", "history", time.Unix(0, r.pace.through).UTC(), "ahead", ahead.Round(time.Second))
+	r := &rhythm{
+		pace:  newPace(a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)),
+		books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags)),
 	}
+	r.pace.through = books.accounts.engine.Snapshot().Through
+	a.tellFuture(r.pace.through)
 	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTicker(lookEvery)
 	defer ticker.Stop()
 	defer look.Stop()
@@ -65,6 +62,15 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 		case <-ctx.Done():
 			return a.last(r)
 		}
+	}
+}
+
+// tellFuture warns of a history that is ahead of the clock.
+func (a *Agent) tellFuture(through int64) {
+	at := time.Unix(0, through)
+	if ahead := at.Sub(a.o.Now()); ahead > a.site.Timing.Ahead {
+		a.o.Log.Error("the history stands in the future of this machine's clock; until the clock has come there, every reading is late. Set the clock, or give another data folder",
+			"history", at.UTC(), "ahead", ahead.Round(time.Second))
 	}
 }
 
@@ -184,70 +190,4 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]
 	return true
-}
-
-// publish shows readers the state after this beat.
-func (a *Agent) publish(r *rhythm) {
-	l, stats := r.books, &r.stats
-	s := l.accounts.engine.Snapshot()
-	v := &view.Snapshot{
-		Site:  a.site.Name,
-		At:    s.Through,
-		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
-		Lag:   r.pace.lag.least(),
-		Loads: make([]view.Load, len(s.Loads)),
-		Tags:  make([]view.Tag, len(s.Tags)),
-		Broker: view.Broker{
-			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
-		},
-		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
-	}
-	for i := range s.Loads {
-		v.Loads[i] = a.loadView(l, i, s.Loads[i])
-	}
-	for i, t := range s.Tags {
-		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
-		if t.Late > 0 && !r.late[i] {
-			r.late[i] = true
-			a.o.Log.Warn("a reading came after its time was accounted for; more are only counted. If they go on, set the publisher's clock or raise timing.lateness", "tag", a.site.Tags[i].Name, "event_time", time.Unix(0, s.Through).UTC())
-		}
-	}
-	a.latest.Store(v)
-	if a.o.Beat != nil {
-		a.o.Beat(v)
-	}
-}
-
-// fileBytes is the size of the history's file, 0 where it cannot be told.
-func (a *Agent) fileBytes() int64 {
-	info, err := os.Stat(filepath.Join(a.o.Data, HistoryFile))
-	if err != nil {
-		return 0
-	}
-	return info.Size()
-}
-
-func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
-	d := a.site.Loads[i].Design
-	return view.Load{
-		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
-		Design: d.Duty, Allow: d.Allow,
-		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
-	}
-}
-
-// reasons are the names under which a tag's refused messages are counted.
-var reasons = names(ingest.Reasons(), ingest.Reason.String)
-
-// crowded is one more: good readings that the engine had no room for.
-const crowded = "crowded"
-
-func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
-	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
-	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
-	for i, reason := range reasons {
-		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})
-	}
-	v.Refused = append(v.Refused, view.Refusal{Reason: crowded, Count: t.Crowded})
-	return v
 }

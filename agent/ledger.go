@@ -92,8 +92,11 @@ func (l *ledger) makeRoom(now int64) bool {
 		l.log.Error("history is not trimmed", "error", err)
 		return false
 	}
+	if t.Readings+t.Minutes == 0 {
+		return false
+	}
 	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes)
-	return t.Readings+t.Minutes > 0
+	return true
 }
 
 func names[T any](all []T, name func(T) string) []string {

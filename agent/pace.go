@@ -15,6 +15,8 @@ const (
 	// firstReach is how far behind the clock event time may begin: a stray stamp of
 	// a clock that was never set must not open years of missing time.
 	firstReach = 24 * time.Hour
+	// longestWait is how long a broker is believed to hold back what leads.
+	longestWait = 5 * time.Minute
 	// lagSpan is how long the least lag of the stamps behind the clock counts.
 	lagSpan = 10 * time.Minute
 )
@@ -37,6 +39,7 @@ type pace struct {
 	newest   int64
 	through  int64
 	heard    time.Time // when readings that lead last came, or the session last opened
+	led      time.Time // when readings that lead last came
 	open     bool
 	lag      lag
 }
@@ -52,7 +55,7 @@ func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
 		return
 	}
 	p.newest = max(p.newest, at)
-	p.heard = now
+	p.heard, p.led = now, now
 }
 
 // advance returns the instant up to which event time has come at the clock's
@@ -60,6 +63,7 @@ func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
 // acknowledgement, so that silence means nothing. In a silence time goes by as it is measured
 // between two looks at the clock, so that setting the clock moves nothing.
 func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
+	heldBack = heldBack && now.Sub(p.led) < longestWait
 	if connected != p.open || !connected || heldBack {
 		p.open, p.heard = connected, now
 	}

@@ -69,6 +69,12 @@ func TestWaitingMessagesAreNoSilence(t *testing.T) {
 	if p.through != 995*sec {
 		t.Errorf("through %d s while messages wait for the disk, want 995", p.through/sec)
 	}
+	for s := int64(1100); s < 1400; s++ {
+		p.advance(wall(s*sec), true, true)
+	}
+	if p.through != 1394*sec {
+		t.Errorf("through %d s after minutes of waiting in vain, want 1394", p.through/sec)
+	}
 }
 
 // Stamps two minutes behind our clock stay in time through a silence.

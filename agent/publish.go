@@ -1,0 +1,85 @@
+package agent
+
+import (
+	"os"
+	"path/filepath"
+	"time"
+
+	"heatreeve/agent/loads"
+	"heatreeve/agent/view"
+	"heatreeve/ingest"
+)
+
+// publish shows readers the state after this beat.
+func (a *Agent) publish(r *rhythm) {
+	l, stats := r.books, &r.stats
+	s := l.accounts.engine.Snapshot()
+	v := &view.Snapshot{
+		Site:  a.site.Name,
+		At:    s.Through,
+		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
+		Lag:   r.pace.lag.least(),
+		Loads: make([]view.Load, len(s.Loads)),
+		Tags:  make([]view.Tag, len(s.Tags)),
+		Broker: view.Broker{
+			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
+		},
+		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
+	}
+	for i := range s.Loads {
+		v.Loads[i] = a.loadView(l, i, s.Loads[i])
+	}
+	for i, t := range s.Tags {
+		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
+	}
+	a.tellLate(r, v)
+	a.latest.Store(v)
+	if a.o.Beat != nil {
+		a.o.Beat(v)
+	}
+}
+
+// tellLate tells of the first late reading of each tag.
+func (a *Agent) tellLate(r *rhythm, v *view.Snapshot) {
+	for i := range v.Tags {
+		if v.Tags[i].Late > 0 && !r.late[i] {
+			r.late[i] = true
+			a.o.Log.Warn("a reading came after its time was accounted for; more are only counted. If they go on, set the publisher's clock or raise timing.lateness",
+				"tag", v.Tags[i].Name, "event_time", time.Unix(0, v.At).UTC())
+		}
+	}
+}
+
+// fileBytes is the size of the history's file, 0 where it cannot be told.
+func (a *Agent) fileBytes() int64 {
+	info, err := os.Stat(filepath.Join(a.o.Data, HistoryFile))
+	if err != nil {
+		return 0
+	}
+	return info.Size()
+}
+
+func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
+	d := a.site.Loads[i].Design
+	return view.Load{
+		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
+		Design: d.Duty, Allow: d.Allow,
+		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
+	}
+}
+
+// reasons are the names under which a tag's refused messages are counted.
+var reasons = names(ingest.Reasons(), ingest.Reason.String)
+
+// crowded is one more: good readings that the engine had no room for.
+const crowded = "crowded"
+
+func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
+	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
+	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
+	for i, reason := range reasons {
+		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})
+	}
+	v.Refused = append(v.Refused, view.Refusal{Reason: crowded, Count: t.Crowded})
+	return v
+}
