@@ -44,10 +44,16 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	defer notify("STOPPING=1")
 	now := time.Now()
 	r := &rhythm{
-		pace:  newPace(a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)),
+		pace:  newPace(len(a.site.Tags), a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)),
 		books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags)),
 	}
-	r.pace.through = books.accounts.engine.Snapshot().Through
+	s := books.accounts.engine.Snapshot()
+	r.pace.through = s.Through
+	for i, t := range s.Tags {
+		if a.site.Tags[i].Time != "" {
+			r.pace.last[i] = t.Newest
+		}
+	}
 	a.tellFuture(r.pace.through)
 	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTicker(lookEvery)
 	defer ticker.Stop()
@@ -76,9 +82,8 @@ func (a *Agent) tellFuture(through int64) {
 
 // look commits at once where the broker waits for acknowledgements.
 func (a *Agent) look(r *rhythm, system time.Time) {
-	was := r.window.eager
 	commit := r.window.look(a.session.Waiting())
-	if r.window.eager && !was && !r.told {
+	if r.window.proven && !r.told {
 		r.told = true
 		a.o.Log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", "messages", r.window.acked)
 	}
@@ -138,7 +143,11 @@ func (a *Agent) last(r *rhythm) error {
 func (a *Agent) take(r *rhythm) {
 	now := a.o.Now()
 	r.received = a.session.Take(r.received[:0])
+	before := r.stats.Connections
 	r.stats = a.session.Stats()
+	if r.stats.Connections != before {
+		r.window.connected()
+	}
 	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
 	for rest := r.received; ; {
 		piece := rest[:min(len(rest), pieceReadings)]
@@ -157,7 +166,7 @@ func (a *Agent) note(r *rhythm, piece []ingest.Received, now time.Time) {
 	for _, x := range piece {
 		r.readings = append(r.readings, x.Reading)
 		if !x.Retained {
-			r.pace.reading(x.At, x.Stamped, x.InOrder, now)
+			r.pace.reading(x.Tag, x.At, x.Stamped, x.InOrder, now)
 		}
 		if x.Acknowledgeable() {
 			r.unacked = append(r.unacked, x)

@@ -29,6 +29,9 @@ const (
 // much as the stamps have lately lagged behind it, so that publishers with slow
 // clocks are not late for ever after a silence.
 //
+// What a broker kept comes tag by tag as it likes, so for a while after the session
+// has opened the tag that is furthest behind leads.
+//
 // Where the site has stamped tags, only stamped readings lead that came in the order
 // in which the broker keeps messages: a bare number, a message without delivery
 // guarantee or a retained one overtakes what is still kept for us.
@@ -41,12 +44,14 @@ type pace struct {
 	heard    time.Time // when readings that lead last came, or the session last opened
 	led      time.Time // when readings that lead last came
 	open     bool
+	opened   time.Time // when the session last opened
+	last     []int64   // newest stamp of each tag among the readings that lead; 0: none
 	lag      lag
 }
 
-// reading notes a reading stamped at. FromSource says whether the stamp came from the
+// reading notes a reading of a tag, stamped at. FromSource says whether the stamp came from the
 // payload, inOrder whether nothing older was overtaken.
-func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
+func (p *pace) reading(tag int, at int64, fromSource, inOrder bool, now time.Time) {
 	if p.stamped && !fromSource {
 		return
 	}
@@ -55,6 +60,7 @@ func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
 		return
 	}
 	p.newest = max(p.newest, at)
+	p.last[tag] = max(p.last[tag], at)
 	p.heard, p.led = now, now
 }
 
@@ -64,10 +70,16 @@ func (p *pace) reading(at int64, fromSource, inOrder bool, now time.Time) {
 // between two looks at the clock, so that setting the clock moves nothing.
 func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
 	heldBack = heldBack && now.Sub(p.led) < longestWait
+	if connected && !p.open {
+		p.opened = now
+	}
 	if connected != p.open || !connected || heldBack {
 		p.open, p.heard = connected, now
 	}
 	to := min(p.newest, now.UnixNano())
+	if now.Sub(p.opened) < p.quiet {
+		to = min(to, p.furthestBehind())
+	}
 	if silence := now.Sub(p.heard); p.open && silence >= p.quiet {
 		to = max(to, p.heard.UnixNano()+int64(silence)-p.lag.least())
 	}
@@ -78,9 +90,21 @@ func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
 	return p.through
 }
 
-// newPace returns the pace of a site with the given lateness and commit interval.
-func newPace(lateness, commit time.Duration, stamped bool) pace {
-	return pace{lateness: lateness, quiet: max(leastQuiet, commit+beyondCommit), stamped: stamped}
+// furthestBehind returns the oldest of the tags' newest stamps, of tags that have led.
+func (p *pace) furthestBehind() int64 {
+	oldest := int64(math.MaxInt64)
+	for _, at := range p.last {
+		if at != 0 {
+			oldest = min(oldest, at)
+		}
+	}
+	return oldest
+}
+
+// newPace returns the pace of a site with so many tags, the given lateness and commit
+// interval.
+func newPace(tags int, lateness, commit time.Duration, stamped bool) pace {
+	return pace{lateness: lateness, quiet: max(leastQuiet, commit+beyondCommit), stamped: stamped, last: make([]int64, tags)}
 }
 
 // lag keeps the least lag of stamps behind the clock, ns, over this lagSpan in

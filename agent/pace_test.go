@@ -10,37 +10,37 @@ const sec = int64(time.Second)
 func wall(ns int64) time.Time { return time.Unix(0, ns) }
 
 func TestPaceFollowsTheStamps(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1000*sec, true, true, wall(1001*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1000*sec, true, true, wall(1001*sec))
 	if got := p.advance(wall(1001*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995", got/sec)
 	}
-	p.reading(990*sec, true, true, wall(1002*sec))
+	p.reading(0, 990*sec, true, true, wall(1002*sec))
 	if got := p.advance(wall(1002*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s after an older stamp, want 995", got/sec)
 	}
 }
 
 func TestPaceIsNotLedByAFastClock(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1025*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1025*sec, true, true, wall(1000*sec))
 	if got := p.advance(wall(1000*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s, want 995: our own clock bounds it", got/sec)
 	}
 }
 
 func TestPaceIsNotLedByArrivalsWhereSomeAreStamped(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(500*sec, true, true, wall(1000*sec))   // the broker's backlog
-	p.reading(1000*sec, false, true, wall(1000*sec)) // a bare number among it
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 500*sec, true, true, wall(1000*sec))   // the broker's backlog
+	p.reading(0, 1000*sec, false, true, wall(1000*sec)) // a bare number among it
 	if got := p.advance(wall(1000*sec), true, false); got != 495*sec {
 		t.Errorf("through %d s, want 495", got/sec)
 	}
 }
 
 func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1000*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1000*sec, true, true, wall(1000*sec))
 	p.advance(wall(1000*sec), true, false)
 	if got := p.advance(wall(1014*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s after 14 s of silence, want 995", got/sec)
@@ -61,8 +61,8 @@ func TestSilenceIsTimedByTheClockOnlyWhileConnected(t *testing.T) {
 }
 
 func TestWaitingMessagesAreNoSilence(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1000*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1000*sec, true, true, wall(1000*sec))
 	for s := int64(1000); s < 1100; s++ {
 		p.advance(wall(s*sec), true, true)
 	}
@@ -79,9 +79,9 @@ func TestWaitingMessagesAreNoSilence(t *testing.T) {
 
 // Stamps two minutes behind our clock stay in time through a silence.
 func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
 	for s := int64(1000); s <= 1060; s += 10 {
-		p.reading((s-120)*sec, true, true, wall(s*sec))
+		p.reading(0, (s-120)*sec, true, true, wall(s*sec))
 		p.advance(wall(s*sec), true, false)
 	}
 	for s := int64(1061); s <= 1100; s++ {
@@ -94,9 +94,9 @@ func TestSlowClocksAreNotLateAfterASilence(t *testing.T) {
 
 // What the broker kept lags far, but what follows it does not: the least counts.
 func TestBacklogIsNoSlowClock(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
 	for s := int64(0); s <= 1000; s += 10 {
-		p.reading(s*sec, true, true, wall(1001*sec))
+		p.reading(0, s*sec, true, true, wall(1001*sec))
 	}
 	p.advance(wall(1001*sec), true, false)
 	if got := p.advance(wall(1016*sec), true, false); got != 1010*sec {
@@ -122,10 +122,10 @@ func TestLagIsForgotten(t *testing.T) {
 // A bare number keeps coming while the stamped publisher is dead: time goes on by
 // the clock all the same.
 func TestBareNumbersDoNotHideASilence(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1000*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1000*sec, true, true, wall(1000*sec))
 	for s := int64(1001); s <= 1100; s++ {
-		p.reading(s*sec, false, true, wall(s*sec))
+		p.reading(0, s*sec, false, true, wall(s*sec))
 		p.advance(wall(s*sec), true, false)
 	}
 	if p.through != 1095*sec {
@@ -136,9 +136,9 @@ func TestBareNumbersDoNotHideASilence(t *testing.T) {
 // A live message without delivery guarantee, or a retained one, overtakes what the
 // broker kept, and must not make it late.
 func TestWhatOvertakesDoesNotLead(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
-	p.reading(1000*sec, true, false, wall(1000*sec))
-	p.reading(400*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.reading(0, 1000*sec, true, false, wall(1000*sec))
+	p.reading(0, 400*sec, true, true, wall(1000*sec))
 	if got := p.advance(wall(1000*sec), true, false); got != 395*sec {
 		t.Errorf("through %d s, want 395: the backlog leads", got/sec)
 	}
@@ -146,9 +146,9 @@ func TestWhatOvertakesDoesNotLead(t *testing.T) {
 
 // Where nothing else comes, such messages do not stop time.
 func TestOnlyWithoutGuarantee(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
 	for s := int64(1000); s <= 1100; s++ {
-		p.reading((s-30)*sec, true, false, wall(s*sec))
+		p.reading(0, (s-30)*sec, true, false, wall(s*sec))
 		p.advance(wall(s*sec), true, false)
 	}
 	if want := (1100 - 30 - 5) * sec; p.through != want {
@@ -159,10 +159,10 @@ func TestOnlyWithoutGuarantee(t *testing.T) {
 // Two stray stamps of 2000, one a beat, then real ones: event time begins a day back
 // at most.
 func TestStrayStampsDoNotBeginIn2000(t *testing.T) {
-	p := newPace(5*time.Second, 10*time.Second, true)
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
 	now := int64(1_700_000_000) * sec
 	for s := range int64(2) {
-		p.reading((946_684_800+10*s)*sec, true, true, wall(now+s*sec))
+		p.reading(0, (946_684_800+10*s)*sec, true, true, wall(now+s*sec))
 		if got, least := p.advance(wall(now+s*sec), true, false), now-int64(firstReach)-6*sec; got < least {
 			t.Errorf("through %d s, want at least %d", got/sec, least/sec)
 		}
@@ -172,13 +172,48 @@ func TestStrayStampsDoNotBeginIn2000(t *testing.T) {
 // A commit interval longer than the usual quiet lengthens it: a broker may wait that
 // long for an acknowledgement.
 func TestQuietIsLongerThanACommit(t *testing.T) {
-	p := newPace(5*time.Second, time.Minute, true)
-	p.reading(1000*sec, true, true, wall(1000*sec))
+	p := newPace(2, 5*time.Second, time.Minute, true)
+	p.reading(0, 1000*sec, true, true, wall(1000*sec))
 	p.advance(wall(1000*sec), true, false)
 	if got := p.advance(wall(1064*sec), true, false); got != 995*sec {
 		t.Errorf("through %d s after 64 s of silence, want 995", got/sec)
 	}
 	if got := p.advance(wall(1065*sec), true, false); got != 1060*sec {
 		t.Errorf("through %d s after 65 s of silence, want 1060", got/sec)
+	}
+}
+
+// What the broker kept comes one tag after the other: the first does not make the
+// second late.
+func TestBacklogTagByTag(t *testing.T) {
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.last[0], p.last[1] = 400*sec, 400*sec // as an earlier run left them
+	p.through = 395 * sec
+	p.advance(wall(1000*sec), true, false)
+	for s := int64(400); s <= 1000; s += 10 {
+		p.reading(0, s*sec, true, true, wall(1001*sec))
+	}
+	if got := p.advance(wall(1001*sec), true, false); got != 395*sec {
+		t.Errorf("through %d s after the first tag, want 395", got/sec)
+	}
+	for s := int64(400); s <= 1000; s += 10 {
+		p.reading(1, s*sec, true, true, wall(1002*sec))
+	}
+	if got := p.advance(wall(1002*sec), true, false); got != 995*sec {
+		t.Errorf("through %d s after both, want 995", got/sec)
+	}
+}
+
+// A tag that is dead holds event time back for that while only.
+func TestDeadTagHoldsBackForAWhileOnly(t *testing.T) {
+	p := newPace(2, 5*time.Second, 10*time.Second, true)
+	p.last[1] = 400 * sec
+	p.advance(wall(1000*sec), true, false)
+	for s := int64(1001); s <= 1020; s++ {
+		p.reading(0, s*sec, true, true, wall(s*sec))
+		p.advance(wall(s*sec), true, false)
+	}
+	if p.through != 1015*sec {
+		t.Errorf("through %d s, want 1015", p.through/sec)
 	}
 }

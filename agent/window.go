@@ -28,7 +28,8 @@ const (
 // commits in each silence; a plant whose bursts only looked like that gives no
 // answers, and is left alone after three.
 type window struct {
-	eager   bool // the broker waits for us
+	eager   bool // the broker waits for us, or may
+	proven  bool // it was seen to
 	misses  int
 	early   bool // the last commit was for the broker's sake
 	waiting int  // at the last look
@@ -41,6 +42,10 @@ type window struct {
 func (w *window) committed(n int) {
 	w.acked, w.waiting, w.looks, w.silent = n, 0, 0, 0
 }
+
+// connected notes a new connection: what the broker kept is to come, so it waits for
+// us until it is seen not to.
+func (w *window) connected() { w.eager, w.misses = true, 0 }
 
 // failed notes that a commit could not be made: the broker's silence means nothing
 // until one is.
@@ -68,7 +73,7 @@ func (w *window) stuck() bool { return w.waiting >= leastWindow && w.silent >= s
 func (w *window) judge(answered bool) {
 	switch {
 	case answered:
-		w.eager, w.misses = true, 0
+		w.eager, w.proven, w.misses = true, true, 0
 	case w.early:
 		w.misses++
 		if w.misses >= maxMisses {
