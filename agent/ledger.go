@@ -38,7 +38,7 @@ type ledger struct {
 	waiting     int // readings in batch
 	committed   []view.Registers
 	saved       time.Time // of the last checkpoint
-	forced      bool      // readings were given up, so only a checkpoint can carry the accounts on
+	forced      bool      // the next commit must carry a checkpoint: the beats alone would not lead to the accounts
 	lost        uint64    // readings given up
 	lostMinutes uint64
 	failures    uint64

@@ -19,14 +19,7 @@ func TestThousandBadMessages(t *testing.T) {
 	a := startAgent(t, circuitSite(t, b, "bad"))
 	a.subscribed(t, b, "bench/all", "TT-1")
 	base := time.Now().Add(-20 * time.Minute).Truncate(time.Minute).UnixMilli()
-	good := func(from, until int64) {
-		pub := b.lines(t, "bench/all")
-		for s := from; s <= until; s += 5 {
-			pub.send(t, `{"ti":85,"to":60,"q":25,"p":3.2,"ts":%d}`, base+s*1000)
-		}
-		pub.close(t)
-	}
-	good(0, 60)
+	b.steady(t, base, 0, 60)
 	a.reaches(t, measured, 54)
 	heat := a.value(t, given) / a.value(t, measured)
 	before := refusals(t, a)
@@ -56,7 +49,7 @@ func TestThousandBadMessages(t *testing.T) {
 			t.Errorf("reason %q: %v messages, want %v", reason, got, n)
 		}
 	}
-	good(65, 120)
+	b.steady(t, base, 65, 120)
 	a.reaches(t, measured, 114)
 	within(t, "heat per measured second", a.value(t, given)/a.value(t, measured), heat, 1e-12)
 	if v := a.value(t, missing); v != 0 {

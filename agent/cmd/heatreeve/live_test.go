@@ -33,6 +33,17 @@ func circuitSite(t *testing.T, b *broker, id string) string {
 	return b.site(t, strings.ReplaceAll(circuit, "%ID%", id))
 }
 
+// steady publishes the circuit at 85 and 60 °C, 25 m³/h and 3.2 barg, stamped each
+// five seconds from base (Unix milliseconds) + from to + until seconds.
+func (b *broker) steady(t *testing.T, base, from, until int64) {
+	t.Helper()
+	pub := b.lines(t, "bench/all")
+	for s := from; s <= until; s += 5 {
+		pub.send(t, `{"ti":85.0,"to":60.0,"q":25.0,"p":3.2,"ts":%d}`, base+s*1000)
+	}
+	pub.close(t)
+}
+
 const (
 	given    = `heatreeve_load_heat_joules_total{direction="given",load="circuit"}`
 	taken    = `heatreeve_load_heat_joules_total{direction="taken",load="circuit"}`
@@ -65,13 +76,8 @@ func TestDutyAgainstIAPWS95(t *testing.T) {
 	b := startBroker(t)
 	a := startAgent(t, circuitSite(t, b, "duty"))
 	a.subscribed(t, b, "bench/all", "TT-1")
-	pub := b.lines(t, "bench/all")
-	base := time.Now().Add(-20 * time.Minute).Truncate(time.Minute).UnixMilli()
 	const seconds = 900
-	for s := int64(0); s <= seconds+10; s += 5 {
-		pub.send(t, `{"ti":85.0,"to":60.0,"q":25.0,"p":3.2,"ts":%d}`, base+s*1000)
-	}
-	pub.close(t)
+	b.steady(t, time.Now().Add(-20*time.Minute).Truncate(time.Minute).UnixMilli(), 0, seconds+10)
 	a.reaches(t, measured, seconds)
 
 	booked := a.value(t, measured)
@@ -149,14 +155,7 @@ func TestBrokerGoneForAMinute(t *testing.T) {
 	a := startAgent(t, circuitSite(t, b, "gone"))
 	a.subscribed(t, b, "bench/all", "TT-1")
 	base := time.Now().Add(-20 * time.Minute).Truncate(time.Minute).UnixMilli()
-	send := func(from, until int64) {
-		pub := b.lines(t, "bench/all")
-		for s := from; s <= until; s += 5 {
-			pub.send(t, `{"ti":85,"to":60,"q":25,"p":3.2,"ts":%d}`, base+s*1000)
-		}
-		pub.close(t)
-	}
-	send(0, 120)
+	b.steady(t, base, 0, 120)
 	a.reaches(t, measured, 114)
 	steady := a.value(t, given) / a.value(t, measured) // W, with no gap yet
 	b.end(t, syscall.SIGTERM)
@@ -175,7 +174,7 @@ func TestBrokerGoneForAMinute(t *testing.T) {
 	b.start(t)
 	a.reaches(t, "heatreeve_broker_connected", 1)
 	a.subscribed(t, b, "bench/all", "TT-1")
-	send(180, 300)
+	b.steady(t, base, 180, 300)
 	// The last reading before the gap is held for its 15 s, so 120 to 135 s are
 	// measured and 135 to 180 s are missing.
 	a.reaches(t, measured, 294-45)

@@ -82,7 +82,15 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 			return status(c.invoke(ctx, args[1:], stdout, stderr), stderr)
 		}
 	}
-	return status(wrongf("unknown command %q; known: run, check, demo, version, help", args[0]), stderr)
+	return status(wrongf("unknown command %q; known: %s, help", args[0], strings.Join(known(), ", ")), stderr)
+}
+
+func known() []string {
+	var all []string
+	for _, c := range commands {
+		all = append(all, c.name)
+	}
+	return all
 }
 
 func (c command) invoke(ctx context.Context, args []string, stdout, stderr io.Writer) error {
