@@ -74,10 +74,71 @@ type Fluid interface {
 	// fluid's range.
 	At(T, p float64) (Properties, error)
 	// Uncertainty returns the relative standard uncertainties of cp (and so of
-	// an enthalpy difference) and of density, as fractions.
-	Uncertainty() (cp, density float64)
+	// an enthalpy difference) and of density at T in K and p in Pa, as
+	// fractions. Outside of the fluid's range they mean nothing.
+	Uncertainty(T, p float64) (cp, density float64)
 	// MolarMass is in kg/mol; 0 where the fluid has none to speak of.
 	MolarMass() float64
+}
+
+// Balance is what a heat balance needs of one state.
+type Balance struct {
+	Enthalpy float64 // h, J/kg
+	Cp       float64 // J/(kg K)
+	Density  float64 // kg/m³
+}
+
+// Balancer is a fluid that works a [Balance] in less time than all of its
+// [Properties]. The figures are those of At, and so are the errors.
+type Balancer interface {
+	Fluid
+	Balance(T, p float64) (Balance, error)
+}
+
+// BalanceOf returns the function that works a [Balance] of f: the fluid's own where
+// it is a [Balancer], else a part of its At.
+func BalanceOf(f Fluid) func(T, p float64) (Balance, error) {
+	if b, ok := f.(Balancer); ok {
+		return b.Balance
+	}
+	return func(T, p float64) (Balance, error) {
+		s, err := f.At(T, p)
+		return Balance{s.Enthalpy, s.Cp, s.Density}, err
+	}
+}
+
+// Wet is a gas whose vapour condenses below the lower end of its Span, while the
+// sensible part of its heat stays well defined: that of the same composition,
+// cooled on without condensing.
+type Wet interface {
+	Fluid
+	// Sensible is At, but not refused below the dew point.
+	Sensible(T, p float64) (Properties, error)
+}
+
+// MoistureKind tells which quantity of the humidity of air is known.
+type MoistureKind uint8
+
+const (
+	HumidityRatio    MoistureKind = iota + 1 // kg of vapour per kg of dry air
+	RelativeHumidity                         // partial pressure over that at saturation, 0 to 1
+	DewPoint                                 // K
+	WetBulb                                  // thermodynamic wet-bulb temperature, K
+)
+
+// Moisture is a humidity as it is measured: Value in the unit of its kind.
+type Moisture struct {
+	Kind  MoistureKind
+	Value float64
+}
+
+// Humid is a gas whose vapour content is measured beside the stream.
+type Humid interface {
+	Fluid
+	// Carrying returns the gas with the moisture m, measured where the
+	// temperature is T in K and the absolute pressure p in Pa. The error says
+	// which figure is out of range.
+	Carrying(m Moisture, T, p float64) (Wet, error)
 }
 
 // RangeError says that a state lies outside a fluid's range, and which bound it

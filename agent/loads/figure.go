@@ -148,9 +148,14 @@ func (s *Stream) spread(f *Figure, x state, u [PartCp]float64, centre result) er
 		}
 		f.Share[part] = q
 	}
-	cp, density := s.Fluid.Uncertainty()
-	f.Share[PartCp] = centre.duty * cp
+	cpIn, densityIn := s.Fluid.Uncertainty(x.inlet, x.pressure)
+	cpOut, densityOut := s.Fluid.Uncertainty(x.outlet, x.outletPressure)
+	f.Share[PartCp] = centre.duty * max(cpIn, cpOut)
 	if s.FlowKind == VolumeFlow {
+		density := densityIn
+		if s.MeterAtOutlet {
+			density = densityOut
+		}
 		f.Share[PartDensity] = centre.duty * density
 	}
 	var sum float64

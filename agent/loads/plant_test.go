@@ -14,13 +14,13 @@ type steady struct {
 	phase                             thermo.Phase
 }
 
-func (s steady) Name() string                    { return "steady" }
-func (s steady) Source() string                  { return "constant by construction" }
-func (s steady) Phase() thermo.Phase             { return s.phase }
-func (s steady) Bounds() thermo.Bounds           { return thermo.Bounds{MinT: 200, MaxT: 600, MaxP: 1e8} }
-func (s steady) Span(float64) (float64, float64) { return s.lo, s.hi }
-func (s steady) Uncertainty() (float64, float64) { return s.uCp, s.uRho }
-func (s steady) MolarMass() float64              { return s.molar }
+func (s steady) Name() string                                { return "steady" }
+func (s steady) Source() string                              { return "constant by construction" }
+func (s steady) Phase() thermo.Phase                         { return s.phase }
+func (s steady) Bounds() thermo.Bounds                       { return thermo.Bounds{MinT: 200, MaxT: 600, MaxP: 1e8} }
+func (s steady) Span(float64) (float64, float64)             { return s.lo, s.hi }
+func (s steady) Uncertainty(T, p float64) (float64, float64) { return s.uCp, s.uRho }
+func (s steady) MolarMass() float64                          { return s.molar }
 func (s steady) At(T, p float64) (thermo.Properties, error) {
 	if T > 600 {
 		return thermo.Properties{}, &thermo.RangeError{Fluid: "steady", Quantity: "temperature", Value: T, Bound: 600, Why: "by construction"}

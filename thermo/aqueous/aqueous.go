@@ -71,7 +71,7 @@ func (m *mixture) MolarMass() float64 { return 0 }
 // and 0.37 % for propylene glycol), and the stated uncertainty of the mass
 // fraction, by the slope of cp and density half-way between freezing point and
 // 373.15 K.
-func (m *mixture) Uncertainty() (cp, density float64) { return m.cpU, m.densityU }
+func (m *mixture) Uncertainty(T, p float64) (cp, density float64) { return m.cpU, m.densityU }
 
 // Span returns the freezing point of the mixture and the boiling point of water at p.
 // The mixture itself boils at a higher temperature, since either glycol is far

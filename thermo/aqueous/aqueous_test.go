@@ -139,8 +139,8 @@ func TestUncertaintyOfConcentration(t *testing.T) {
 	for _, s := range Solutes() {
 		const x, u = 0.35, 0.02
 		exact, vague := mustNew(t, s, x, 0), mustNew(t, s, x, u)
-		cp0, rho0 := exact.Uncertainty()
-		cp, rho := vague.Uncertainty()
+		cp0, rho0 := exact.Uncertainty(293.15, 1e5)
+		cp, rho := vague.Uncertainty(293.15, 1e5)
 		T := (exact.Bounds().MinT + exact.Bounds().MaxT) / 2
 		lo, err1 := mustNew(t, s, x-1e-4, 0).At(T, pressure)
 		hi, err2 := mustNew(t, s, x+1e-4, 0).At(T, pressure)

@@ -14,7 +14,7 @@ func ExampleNew() {
 		return
 	}
 	freezing, _ := glycol.Span(3e5)
-	cp, density := glycol.Uncertainty()
+	cp, density := glycol.Uncertainty(293.15, 2e5)
 	fmt.Printf("%s freezes at %.1f °C; cp ± %.2f %%, density ± %.2f %%\n", glycol.Name(), freezing-273.15, 100*cp, 100*density)
 
 	q, err := thermo.StreamHeat(glycol, 5, 285.15, 3e5, 280.15, 3e5)

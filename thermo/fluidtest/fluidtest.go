@@ -20,7 +20,9 @@ import (
 //     error is a *[thermo.RangeError] that names the fluid and the bound;
 //   - NaN, infinite and negative input is refused;
 //   - an evaluation does not allocate;
-//   - name, source, phase, molar mass and uncertainties are filled in.
+//   - the uncertainties are fractions below 0.5 at every state;
+//   - where f is a [thermo.Balancer], its balance is that of At;
+//   - name, source, phase and molar mass are filled in.
 func Run(t *testing.T, f thermo.Fluid) {
 	t.Helper()
 	s := suite{f: f, states: states(f)}
@@ -39,6 +41,8 @@ var checks = []struct {
 	{"description", suite.description},
 	{"state", suite.everyState},
 	{"rising", suite.rising},
+	{"uncertainty", suite.uncertainty},
+	{"balance", suite.balance},
 	{"box", suite.box},
 	{"phase", suite.phase},
 	{"nonsense", suite.nonsense},
@@ -106,10 +110,35 @@ func (s suite) description(t report) {
 	if m := f.MolarMass(); !(m >= 0 && m < 1) {
 		t.Errorf("molar mass %g kg/mol", m)
 	}
-	cp, density := f.Uncertainty()
-	for name, u := range map[string]float64{"cp": cp, "density": density} {
-		if !(u >= 0 && u < 0.5) {
-			t.Errorf("standard uncertainty of %s is %g as a fraction", name, u)
+}
+
+// uncertainty holds both figures between 0 and 0.5 at every state: a fluid that
+// knows less is no ground for a heat account.
+func (s suite) uncertainty(t report) {
+	for _, st := range s.states {
+		cp, density := s.f.Uncertainty(st.T, st.p)
+		if !(cp >= 0 && cp < 0.5 && density >= 0 && density < 0.5) {
+			t.Errorf("%g K, %g Pa: standard uncertainties %g of cp and %g of density, as fractions", st.T, st.p, cp, density)
+		}
+	}
+}
+
+// balance compares a fluid's own short form with At.
+func (s suite) balance(t report) {
+	b, ok := s.f.(thermo.Balancer)
+	if !ok {
+		return
+	}
+	for _, st := range s.states {
+		p, err1 := s.f.At(st.T, st.p)
+		got, err2 := b.Balance(st.T, st.p)
+		if err := errors.Join(err1, err2); err != nil {
+			t.Errorf("%g K, %g Pa: %v", st.T, st.p, err)
+			continue
+		}
+		scale := math.Abs(p.Enthalpy) + st.p/p.Density
+		if math.Abs(got.Enthalpy-p.Enthalpy) > 1e-12*scale || math.Abs(got.Cp/p.Cp-1) > 1e-12 || math.Abs(got.Density/p.Density-1) > 1e-12 {
+			t.Errorf("%g K, %g Pa: balance %+v, properties %+v", st.T, st.p, got, p)
 		}
 	}
 }
@@ -265,9 +294,10 @@ func (s suite) allocations(t report) {
 	n := testing.AllocsPerRun(100, func() {
 		p, _ := s.f.At(st.T, st.p)
 		lo, _ := s.f.Span(st.p)
-		sink += p.Enthalpy + lo
+		u, _ := s.f.Uncertainty(st.T, st.p)
+		sink += p.Enthalpy + lo + u
 	})
 	if n != 0 {
-		t.Errorf("%g allocations for At and Span, want none", n)
+		t.Errorf("%g allocations for At, Span and Uncertainty, want none", n)
 	}
 }

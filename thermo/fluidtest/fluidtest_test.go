@@ -15,13 +15,15 @@ type sound struct {
 	wrong func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error)
 }
 
-func (sound) Name() string                       { return "sound" }
-func (sound) Source() string                     { return "made up" }
-func (sound) Phase() thermo.Phase                { return thermo.Liquid }
-func (sound) Bounds() thermo.Bounds              { return thermo.Bounds{MinT: 270, MaxT: 370, MinP: 1e3, MaxP: 1e6} }
-func (sound) Span(float64) (lo, hi float64)      { return 280, 360 }
-func (sound) Uncertainty() (cp, density float64) { return 0.01, 0.01 }
-func (sound) MolarMass() float64                 { return 0.018 }
+func (sound) Name() string                  { return "sound" }
+func (sound) Source() string                { return "made up" }
+func (sound) Phase() thermo.Phase           { return thermo.Liquid }
+func (sound) Bounds() thermo.Bounds         { return thermo.Bounds{MinT: 270, MaxT: 370, MinP: 1e3, MaxP: 1e6} }
+func (sound) Span(float64) (lo, hi float64) { return 280, 360 }
+func (sound) Uncertainty(T, p float64) (cp, density float64) {
+	return 0.01, 0.01
+}
+func (sound) MolarMass() float64 { return 0.018 }
 
 func (f sound) At(T, p float64) (thermo.Properties, error) {
 	s, err := f.right(T, p)
@@ -110,6 +112,45 @@ func TestFaultsAreCaught(t *testing.T) {
 	}
 	if len(escape) == 0 {
 		t.Error("the fault of allocating was not reached")
+	}
+}
+
+// unsure knows nothing of its cp at high pressure.
+type unsure struct{ sound }
+
+func (unsure) Uncertainty(T, p float64) (cp, density float64) { return p / 1e6, 0.01 }
+
+// brief has a balance of its own, off by a part of it.
+type brief struct {
+	sound
+	off thermo.Balance
+}
+
+func (f brief) Balance(T, p float64) (thermo.Balance, error) {
+	s, err := f.right(T, p)
+	return thermo.Balance{
+		Enthalpy: s.Enthalpy * (1 + f.off.Enthalpy),
+		Cp:       s.Cp * (1 + f.off.Cp),
+		Density:  s.Density * (1 + f.off.Density),
+	}, err
+}
+
+func TestFaultsOfOtherMethodsAreCaught(t *testing.T) {
+	Run(t, brief{})
+	for _, tt := range []struct {
+		f     thermo.Fluid
+		check func(suite, report)
+	}{
+		{unsure{}, suite.uncertainty},
+		{brief{off: thermo.Balance{Enthalpy: 1e-10}}, suite.balance},
+		{brief{off: thermo.Balance{Cp: 1e-10}}, suite.balance},
+		{brief{off: thermo.Balance{Density: 1e-10}}, suite.balance},
+	} {
+		var n tally
+		tt.check(suite{f: tt.f, states: states(tt.f)}, &n)
+		if n == 0 {
+			t.Errorf("%+v passed", tt.f)
+		}
 	}
 }
 

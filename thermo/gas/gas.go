@@ -50,7 +50,7 @@ func (m *mixture) MolarMass() float64    { return m.molarMass }
 // Uncertainty joins that of the polynomials with what the ideal gas may be off by,
 // anywhere up to the highest pressure allowed: 0.9 % in cp and 0.15 % in density
 // for dry air. An uncertain composition is not in it.
-func (m *mixture) Uncertainty() (cp, density float64) { return m.cpU, m.rhoU }
+func (m *mixture) Uncertainty(T, p float64) (cp, density float64) { return m.cpU, m.rhoU }
 
 // Span returns the temperature at which the first component condenses or
 // freezes out at p, 0 where none does above 200 K, and +Inf. Water by IAPWS-IF97,

@@ -51,12 +51,14 @@ type tabulated struct {
 	molarMass         float64
 }
 
-func (f *tabulated) Name() string                       { return f.name }
-func (f *tabulated) Source() string                     { return f.source }
-func (f *tabulated) Phase() thermo.Phase                { return f.phase }
-func (f *tabulated) Bounds() thermo.Bounds              { return f.bounds }
-func (f *tabulated) MolarMass() float64                 { return f.molarMass }
-func (f *tabulated) Uncertainty() (cp, density float64) { return f.cpU, f.densityU }
+func (f *tabulated) Name() string          { return f.name }
+func (f *tabulated) Source() string        { return f.source }
+func (f *tabulated) Phase() thermo.Phase   { return f.phase }
+func (f *tabulated) Bounds() thermo.Bounds { return f.bounds }
+func (f *tabulated) MolarMass() float64    { return f.molarMass }
+
+// Uncertainty is as stated, the same at every state.
+func (f *tabulated) Uncertainty(T, p float64) (cp, density float64) { return f.cpU, f.densityU }
 
 // Span returns the freezing and the boiling point as the user stated them, at
 // whatever pressure.

@@ -48,7 +48,7 @@ func (liquid) MolarMass() float64    { return molarMass }
 // liquid: 0.2 % in cp and 0.05 % in specific volume (figures from memory). The
 // largest deviations from IAPWS-95 that the tests measure are 0.12 % in cp, half
 // of the states lie within 0.05 %, and 0.004 % in density.
-func (liquid) Uncertainty() (cp, density float64) { return 0.001, 0.00025 }
+func (liquid) Uncertainty(T, p float64) (cp, density float64) { return 0.001, 0.00025 }
 
 // Span returns 273.15 K and the boiling point at p, but no more than 623.15 K,
 // where the formulation ends. Below 611.213 Pa there is no liquid and both are
@@ -96,7 +96,7 @@ func (steam) MolarMass() float64    { return molarMass }
 // away from the critical region: 0.5 % in cp and 0.1 % in specific volume
 // (figures from memory). The largest deviations from IAPWS-95 that the tests
 // measure are 0.11 % in cp and 0.01 % in density.
-func (steam) Uncertainty() (cp, density float64) { return 0.0025, 0.0005 }
+func (steam) Uncertainty(T, p float64) (cp, density float64) { return 0.0025, 0.0005 }
 
 // Span returns the dew point at p and +Inf. Below 611.213 Pa the lower end is
 // 273.15 K, and above 16.529 MPa, where a near-critical region lies between
