@@ -90,8 +90,14 @@ type Stream struct {
 	Pressure, OutletPressure Source         // Pa; the outlet's is the inlet's when not given
 	MeterAtOutlet            bool           // where a volume flow is metered
 	Gives                    bool           // gives heat, and is colder at the outlet; else it takes heat
-	Margin                   float64        // K to saturation below which heat may be latent; default 5
+	Margin                   float64        // K to saturation below which heat may be latent; default 5, for moist air 1
 	IdleBelow                float64        // SI, as the flow; default 0.5 % of the flow tag's range
+	// Humidity is that of a gas whose vapour content is measured, at the inlet, in
+	// the unit of its kind; HumidityKind is 0 for any other fluid.
+	Humidity     Source
+	HumidityKind thermo.MoistureKind
+	Coil         Source // K, the coldest surface that a moist gas meets; only with HasCoil
+	HasCoil      bool
 }
 
 // Design is what a load should move.
