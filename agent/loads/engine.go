@@ -13,13 +13,14 @@ var Windows = [...]int64{minute, 15 * minute, 60 * minute}
 // Engine computes the loads of one plant. It is not safe for use by several
 // goroutines at once.
 type Engine struct {
-	cfg     Config
-	next    int64 // the next grid point to compute; 0 before the first reading
-	through int64
-	tags    []tagState
-	loads   []loadState
-	tally   []Tally
-	users   [][]int // loads that read each tag
+	cfg       Config
+	equations []equation // one a load
+	next      int64      // the next grid point to compute; 0 before the first reading
+	through   int64
+	tags      []tagState
+	loads     []loadState
+	tally     []Tally
+	users     [][]int // loads that read each tag
 }
 
 // loadState is what the engine keeps of one load.
@@ -48,6 +49,7 @@ func New(cfg Config) (*Engine, error) {
 		users: make([][]int, len(cfg.Tags)),
 	}
 	for i := range e.loads {
+		e.equations = append(e.equations, equationOf(&cfg.Loads[i].Stream))
 		e.enlist(i)
 		for k, length := range Windows {
 			e.loads[i].Windows[k] = newWindow(length, cfg.Grid)
@@ -186,7 +188,7 @@ func (e *Engine) evaluateAll(g int64) bool {
 	for i := range e.loads {
 		l := &e.loads[i]
 		if !l.fresh || g >= l.figure.Until {
-			l.figure, l.fresh = e.evaluate(&e.cfg.Loads[i], g), true
+			l.figure, l.fresh = e.evaluate(i, g), true
 		}
 		l.figure.At = g
 		any = any || l.figure.Measured()

@@ -12,56 +12,49 @@ type held struct {
 	Has   bool
 }
 
-// evaluate works the figure of load l at the grid point g from the values held
+// evaluate works the figure of a load at the grid point g from the values held
 // then. It depends on nothing else.
-func (e *Engine) evaluate(l *Load, g int64) Figure {
-	s := &l.Stream
+func (e *Engine) evaluate(load int, g int64) Figure {
+	q := &e.equations[load]
 	f := Figure{At: g, Until: math.MaxInt64}
-	var x state
+	var x State
 	var u [PartCp]float64
-	if !e.read(&f, s.Flow, &x.flow, &u[PartFlow]) {
+	if !e.read(&f, q.Flow, &x.Flow, &u[PartFlow]) {
 		return f
 	}
-	if x.flow == 0 || math.Abs(x.flow) <= s.IdleBelow {
+	if x.Flow == 0 || math.Abs(x.Flow) <= q.IdleBelow {
 		f.Idle = true
 		return f
 	}
-	if x.flow < 0 {
-		return f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.flow))
+	if x.Flow < 0 {
+		return f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.Flow))
 	}
-	ok := e.read(&f, s.Inlet, &x.inlet, &u[PartInlet]) &&
-		e.read(&f, s.Outlet, &x.outlet, &u[PartOutlet]) &&
-		e.read(&f, s.Pressure, &x.pressure, &u[PartPressure]) &&
-		e.read(&f, s.OutletPressure, &x.outletPressure, &u[PartOutletPressure])
+	ok := e.read(&f, q.Inlet, &x.Inlet, &u[PartInlet]) &&
+		e.read(&f, q.Outlet, &x.Outlet, &u[PartOutlet]) &&
+		e.read(&f, q.Pressure, &x.Pressure, &u[PartPressure]) &&
+		e.read(&f, q.OutletPressure, &x.OutletPressure, &u[PartOutletPressure])
 	if !ok {
 		return f
 	}
-	if s.OutletPressure == s.Pressure {
+	if q.OutletPressure == q.Pressure {
 		u[PartOutletPressure] = 0 // moves with the inlet's
 	}
-	return s.figure(f, x, u)
+	return q.figure(f, x, u)
 }
 
-// largestMassFlow, kg/s, is beyond any pipe: what gives more is no flow but the
-// absurd number of a transmitter without a signal, and would spoil the registers.
-const largestMassFlow = 1e6
-
-func (s *Stream) figure(f Figure, x state, u [PartCp]float64) Figure {
-	if why, near := s.saturated(x); near {
+func (q *equation) figure(f Figure, x State, u [PartCp]float64) Figure {
+	if why, near := q.saturated(x); near {
 		return f.fail(Saturation, why)
 	}
-	r, err := s.heat(x)
+	r, err := q.work(x)
 	if err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	if err := s.spread(&f, x, u, r); err != nil {
+	if err := q.spread(&f, x, u, r); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	if !(r.mass <= largestMassFlow) {
-		return f.fail(OutOfRange, fmt.Sprintf("mass flow of %g kg/s is more than any pipe carries", r.mass))
-	}
-	f.Duty, f.MassFlow, f.Density = r.duty, r.mass, r.density
-	f.Inlet, f.Outlet, f.Pressure = x.inlet, x.outlet, x.pressure
+	f.Duty, f.MassFlow, f.Density = r.Duty, r.MassFlow, r.Density
+	f.Inlet, f.Outlet, f.Pressure = x.Inlet, x.Outlet, x.Pressure
 	return f
 }
 

@@ -1,0 +1,86 @@
+package loads
+
+import "math"
+
+// Part names one contribution to the uncertainty of a duty.
+type Part uint8
+
+const (
+	PartFlow Part = iota
+	PartInlet
+	PartOutlet
+	PartPressure
+	PartOutletPressure
+	PartCp
+	PartDensity
+	Parts // how many there are
+)
+
+// spread fills the figure's uncertainty: each input is moved by its standard
+// uncertainty up and down and half the change of duty is its contribution
+// (JCGM 100:2008, 5.1.3, note 2); contributions of independent inputs add as
+// root of the sum of squares. The error is that of the heat equation where an
+// input can be moved neither way inside the fluid's range.
+func (q *equation) spread(f *Figure, x State, u [PartCp]float64, centre Result) error {
+	for part, ui := range u {
+		if ui == 0 {
+			continue
+		}
+		half, err := q.swing(x, Part(part), ui, centre)
+		if err != nil {
+			return err
+		}
+		f.Share[part] = half
+	}
+	cpIn, densityIn := q.Fluid.Uncertainty(x.Inlet, x.Pressure)
+	cpOut, densityOut := q.Fluid.Uncertainty(x.Outlet, x.OutletPressure)
+	f.Share[PartCp] = centre.Duty * max(cpIn, cpOut)
+	if q.FlowKind == VolumeFlow {
+		density := densityIn
+		if q.MeterAtOutlet {
+			density = densityOut
+		}
+		f.Share[PartDensity] = centre.Duty * density
+	}
+	var sum float64
+	for _, share := range f.Share {
+		sum += share * share
+	}
+	f.Uncertainty = math.Sqrt(sum)
+	return nil
+}
+
+// swing returns half the change of duty as one input goes from u below to u
+// above; at the edge of the fluid's range, the change on the side that is left.
+func (q *equation) swing(x State, part Part, u float64, centre Result) (float64, error) {
+	up, errUp := q.heat(q.moved(x, part, u))
+	down, errDown := q.heat(q.moved(x, part, -u))
+	switch {
+	case errUp == nil && errDown == nil:
+		return (up.Duty - down.Duty) / 2, nil
+	case errUp == nil:
+		return up.Duty - centre.Duty, nil
+	case errDown == nil:
+		return centre.Duty - down.Duty, nil
+	}
+	return 0, errUp
+}
+
+func (q *equation) moved(x State, part Part, by float64) State {
+	switch part {
+	case PartFlow:
+		x.Flow += by
+	case PartInlet:
+		x.Inlet += by
+	case PartOutlet:
+		x.Outlet += by
+	case PartPressure:
+		x.Pressure += by
+		if q.OutletPressure == q.Pressure {
+			x.OutletPressure += by
+		}
+	case PartOutletPressure:
+		x.OutletPressure += by
+	}
+	return x
+}
