@@ -49,7 +49,11 @@ func New(cfg Config) (*Engine, error) {
 		users: make([][]int, len(cfg.Tags)),
 	}
 	for i := range e.loads {
-		e.equations = append(e.equations, equationOf(&cfg.Loads[i].Stream))
+		q, err := equationOf(&cfg.Loads[i].Stream)
+		if err != nil {
+			return nil, fmt.Errorf("load %q: %w", cfg.Loads[i].Name, err)
+		}
+		e.equations = append(e.equations, q)
 		e.enlist(i)
 		for k, length := range Windows {
 			e.loads[i].Windows[k] = newWindow(length, cfg.Grid)
@@ -60,8 +64,7 @@ func New(cfg Config) (*Engine, error) {
 
 // enlist notes which tags a load reads.
 func (e *Engine) enlist(load int) {
-	s := &e.cfg.Loads[load].Stream
-	for _, src := range [...]Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure} {
+	for _, src := range e.equations[load].needs {
 		if src.Tag >= 0 && !slices.Contains(e.users[src.Tag], load) {
 			e.users[src.Tag] = append(e.users[src.Tag], load)
 		}

@@ -32,28 +32,35 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 	ok := e.read(&f, q.Inlet, &x.Inlet, &u[PartInlet]) &&
 		e.read(&f, q.Outlet, &x.Outlet, &u[PartOutlet]) &&
 		e.read(&f, q.Pressure, &x.Pressure, &u[PartPressure]) &&
-		e.read(&f, q.OutletPressure, &x.OutletPressure, &u[PartOutletPressure])
+		e.read(&f, q.OutletPressure, &x.OutletPressure, &u[PartOutletPressure]) &&
+		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &u[PartHumidity])) &&
+		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(float64)))
 	if !ok {
 		return f
 	}
 	if q.OutletPressure == q.Pressure {
 		u[PartOutletPressure] = 0 // moves with the inlet's
 	}
-	return q.figure(f, x, u)
+	return q.figure(f, &x, &u)
 }
 
-func (q *equation) figure(f Figure, x State, u [PartCp]float64) Figure {
-	if why, near := q.saturated(x); near {
-		return f.fail(Saturation, why)
-	}
-	r, err := q.work(x)
+func (q *equation) figure(f Figure, x *State, u *[PartCp]float64) Figure {
+	m, err := q.medium(x)
 	if err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	if err := q.spread(&f, x, u, r); err != nil {
+	why, remark := q.phase(&m, x)
+	if why != "" {
+		return f.fail(Saturation, why)
+	}
+	r, err := q.work(&m, x)
+	if err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	f.Duty, f.MassFlow, f.Density = r.Duty, r.MassFlow, r.Density
+	if err := q.spread(&f, &m, x, u, &r); err != nil {
+		return f.fail(OutOfRange, err.Error())
+	}
+	f.Duty, f.MassFlow, f.Density, f.Remark = r.Duty, r.MassFlow, r.Density, remark
 	f.Inlet, f.Outlet, f.Pressure = x.Inlet, x.Outlet, x.Pressure
 	return f
 }

@@ -49,7 +49,8 @@ type Figure struct {
 	Inlet       float64        // K
 	Outlet      float64        // K
 	Pressure    float64        // at the inlet, Pa
-	Until       int64          // instant at which the first held input expires; MaxInt64 for constants alone
+	Remark
+	Until int64 // instant at which the first held input expires; MaxInt64 for constants alone
 }
 
 // Measured reports whether the figure may be booked.

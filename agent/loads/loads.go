@@ -10,6 +10,11 @@
 // last reading until its maximum age. An interval is booked when event time has
 // passed its end, either as measured, with its heat, or as missing.
 //
+// The duty is of sensible heat. Of a liquid near boiling, or a gas near its dew point,
+// there is none, since its heat may be latent. Of a wet gas there is the sensible part
+// even below the dew point, with a [Remark] that says so; a liquid near freezing has
+// one too. Every tag that a load names is needed for its duty.
+//
 // Instants and spans are int64 nanoseconds (Unix time); temperatures K,
 // pressures absolute Pa, mass flow kg/s, duty W, heat J.
 package loads
@@ -96,8 +101,17 @@ type Stream struct {
 	// Gives is true where the stream gives heat up: duty is then
 	// m·(h_in − h_out), otherwise m·(h_out − h_in).
 	Gives bool
-	// Margin in K that a liquid must stay below boiling, and a gas above its
-	// dew point, for its heat to count as sensible.
+	// Humidity of the gas at the inlet, in the unit of its kind; only with a
+	// [thermo.Humid] fluid. HumidityKind is 0 where it is not measured.
+	Humidity     Source
+	HumidityKind thermo.MoistureKind
+	// Coil is the coldest surface that a [thermo.Wet] gas meets on its way, K, where
+	// HasCoil; otherwise only the outlet shows whether vapour condenses.
+	Coil    Source
+	HasCoil bool
+	// Margin in K that a liquid must stay below boiling, and a gas above its dew
+	// point, for its heat to count as sensible. A wet gas within it is remarked upon,
+	// and so is a liquid within it of freezing, but not beyond 3 K.
 	Margin float64
 	// IdleBelow is the flow, in the flow signal's SI unit, at or below which
 	// nothing is taken to flow.

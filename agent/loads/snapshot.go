@@ -47,8 +47,7 @@ func (e *Engine) Snapshot() Snapshot {
 
 // until is [LoadState.Until] of a load; an idle one needs only its flow.
 func (e *Engine) until(load int) int64 {
-	s := &e.cfg.Loads[load].Stream
-	needs := []Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure}
+	needs := e.equations[load].needs
 	if e.loads[load].figure.Idle {
 		needs = needs[:1]
 	}

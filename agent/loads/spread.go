@@ -11,7 +11,8 @@ const (
 	PartOutlet
 	PartPressure
 	PartOutletPressure
-	PartCp
+	PartHumidity
+	PartCp // the first of those that are not an input's
 	PartDensity
 	Parts // how many there are
 )
@@ -21,19 +22,19 @@ const (
 // (JCGM 100:2008, 5.1.3, note 2); contributions of independent inputs add as
 // root of the sum of squares. The error is that of the heat equation where an
 // input can be moved neither way inside the fluid's range.
-func (q *equation) spread(f *Figure, x State, u [PartCp]float64, centre Result) error {
+func (q *equation) spread(f *Figure, m *medium, x *State, u *[PartCp]float64, centre *Result) error {
 	for part, ui := range u {
 		if ui == 0 {
 			continue
 		}
-		half, err := q.swing(x, Part(part), ui, centre)
+		half, err := q.swing(m, x, Part(part), ui, centre)
 		if err != nil {
 			return err
 		}
 		f.Share[part] = half
 	}
-	cpIn, densityIn := q.Fluid.Uncertainty(x.Inlet, x.Pressure)
-	cpOut, densityOut := q.Fluid.Uncertainty(x.Outlet, x.OutletPressure)
+	cpIn, densityIn := m.Uncertainty(x.Inlet, x.Pressure)
+	cpOut, densityOut := m.Uncertainty(x.Outlet, x.OutletPressure)
 	f.Share[PartCp] = centre.Duty * max(cpIn, cpOut)
 	if q.FlowKind == VolumeFlow {
 		density := densityIn
@@ -52,18 +53,47 @@ func (q *equation) spread(f *Figure, x State, u [PartCp]float64, centre Result) 
 
 // swing returns half the change of duty as one input goes from u below to u
 // above; at the edge of the fluid's range, the change on the side that is left.
-func (q *equation) swing(x State, part Part, u float64, centre Result) (float64, error) {
-	up, errUp := q.heat(q.moved(x, part, u))
-	down, errDown := q.heat(q.moved(x, part, -u))
+func (q *equation) swing(m *medium, x *State, part Part, u float64, centre *Result) (float64, error) {
+	up, errUp := q.beside(m, x, q.moved(*x, part, u), centre)
+	down, errDown := q.beside(m, x, q.moved(*x, part, -u), centre)
 	switch {
 	case errUp == nil && errDown == nil:
-		return (up.Duty - down.Duty) / 2, nil
+		return (up - down) / 2, nil
 	case errUp == nil:
-		return up.Duty - centre.Duty, nil
+		return up - centre.Duty, nil
 	case errDown == nil:
-		return centre.Duty - down.Duty, nil
+		return centre.Duty - down, nil
 	}
 	return 0, errUp
+}
+
+// beside returns the duty in the state y, near the state x with the result centre. An
+// end that has not moved is not worked again; what a measured humidity amounts to
+// moves with the inlet.
+func (q *equation) beside(m *medium, x *State, y State, centre *Result) (float64, error) {
+	in, out := centre.Inlet, centre.Outlet
+	inletMoved := y.Inlet != x.Inlet || y.Pressure != x.Pressure
+	outletMoved := y.Outlet != x.Outlet || y.OutletPressure != x.OutletPressure
+	if q.humid != nil && (inletMoved || y.Humidity != x.Humidity) {
+		other, err := q.medium(&y)
+		if err != nil {
+			return 0, err
+		}
+		m, inletMoved, outletMoved = &other, true, true
+	}
+	var err error
+	if inletMoved {
+		if in, err = m.inlet(&y); err != nil {
+			return 0, err
+		}
+	}
+	if outletMoved {
+		if out, err = m.outlet(&y); err != nil {
+			return 0, err
+		}
+	}
+	_, _, duty := q.heat(m, &y, &in, &out)
+	return duty, nil
 }
 
 func (q *equation) moved(x State, part Part, by float64) State {
@@ -81,6 +111,8 @@ func (q *equation) moved(x State, part Part, by float64) State {
 		}
 	case PartOutletPressure:
 		x.OutletPressure += by
+	case PartHumidity:
+		x.Humidity += by
 	}
 	return x
 }

@@ -12,6 +12,8 @@ type State struct {
 	Flow                     float64 // in the unit of the stream's FlowKind; not below zero
 	Inlet, Outlet            float64 // K
 	Pressure, OutletPressure float64 // absolute Pa
+	Humidity                 float64 // at the inlet, in the unit of the stream's HumidityKind, where it has one
+	Coil                     float64 // K, where the stream has one
 }
 
 // Result is what the heat equation gives for one state.
@@ -20,6 +22,7 @@ type Result struct {
 	MassFlow      float64 // kg/s
 	Density       float64 // at the meter, kg/m³
 	Inlet, Outlet thermo.Balance
+	Remark
 }
 
 // Work works the duty of s in the state x, as the engine does:
@@ -27,84 +30,141 @@ type Result struct {
 //	Q = ± m·(h(inlet) − h(outlet))
 //
 // positive in the stream's service. A volume flow becomes mass with the density in the
-// meter's pipe, a molar flow with the molar mass. The error says which end is outside
+// meter's pipe, a molar flow with the molar mass. Of a [thermo.Wet] gas h is the
+// sensible part, at the composition of the inlet. The error says which end is outside
 // the fluid's range (a [*thermo.RangeError]) or within s.Margin of boiling or of the
-// dew point, or that the flow is none. Sources, IdleBelow and the rest of s that
-// belongs to a running plant are not looked at.
+// dew point, what is wrong with the humidity, or that the flow is none. Sources,
+// IdleBelow and the rest of s that belongs to a running plant are not looked at.
 func Work(s *Stream, x State) (Result, error) {
 	if !(x.Flow >= 0) {
 		return Result{}, fmt.Errorf("flow of %g: it must be a number and not below zero", x.Flow)
 	}
-	q := equationOf(s)
-	if why, near := q.saturated(x); near {
+	q, err := equationOf(s)
+	if err != nil {
+		return Result{}, err
+	}
+	m, err := q.medium(&x)
+	if err != nil {
+		return Result{}, err
+	}
+	why, remark := q.phase(&m, &x)
+	if why != "" {
 		return Result{}, errors.New(why)
 	}
-	return q.work(x)
+	r, err := q.work(&m, &x)
+	r.Remark = remark
+	return r, err
 }
 
 // equation is the heat equation of one stream, with what depends on nothing but
-// the fluid found beforehand.
+// the stream found beforehand.
 type equation struct {
 	*Stream
+	declared medium
+	humid    thermo.Humid // where HumidityKind is not 0
+	needs    []Source     // the flow first
+}
+
+// equationOf returns the equation of s. The error says that the humidity of its fluid
+// cannot be told.
+func equationOf(s *Stream) (equation, error) {
+	q := equation{Stream: s, declared: mediumOf(s.Fluid), needs: []Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure}}
+	if s.HumidityKind != 0 {
+		var ok bool
+		if q.humid, ok = s.Fluid.(thermo.Humid); !ok {
+			return q, fmt.Errorf("a humidity is given, and %s has none that is measured", s.Fluid.Name())
+		}
+		q.needs = append(q.needs, s.Humidity)
+	}
+	if s.HasCoil {
+		q.needs = append(q.needs, s.Coil)
+	}
+	return q, nil
+}
+
+// medium is a fluid with the way to its balance.
+type medium struct {
+	thermo.Fluid
+	wet     thermo.Wet // nil where the fluid is none
 	balance func(T, p float64) (thermo.Balance, error)
 }
 
-func equationOf(s *Stream) equation { return equation{s, thermo.BalanceOf(s.Fluid)} }
+func mediumOf(f thermo.Fluid) medium {
+	if w, ok := f.(thermo.Wet); ok {
+		return medium{Fluid: f, wet: w}
+	}
+	return medium{Fluid: f, balance: thermo.BalanceOf(f)}
+}
+
+func (m *medium) inlet(x *State) (thermo.Balance, error) {
+	b, err := m.at(x.Inlet, x.Pressure)
+	if err != nil {
+		err = fmt.Errorf("inlet: %w", err)
+	}
+	return b, err
+}
+
+func (m *medium) outlet(x *State) (thermo.Balance, error) {
+	b, err := m.at(x.Outlet, x.OutletPressure)
+	if err != nil {
+		err = fmt.Errorf("outlet: %w", err)
+	}
+	return b, err
+}
+
+func (m *medium) at(T, p float64) (thermo.Balance, error) {
+	if m.wet == nil {
+		return m.balance(T, p)
+	}
+	s, err := m.wet.Sensible(T, p)
+	return thermo.Balance{Enthalpy: s.Enthalpy, Cp: s.Cp, Density: s.Density}, err
+}
+
+// medium is what flows in the state x.
+func (q *equation) medium(x *State) (medium, error) {
+	if q.humid == nil {
+		return q.declared, nil
+	}
+	w, err := q.humid.Carrying(thermo.Moisture{Kind: q.HumidityKind, Value: x.Humidity}, x.Inlet, x.Pressure)
+	if err != nil {
+		return medium{}, fmt.Errorf("humidity at the inlet: %w", err)
+	}
+	return medium{Fluid: w, wet: w}, nil
+}
 
 // largestMassFlow, kg/s, is beyond any pipe: what gives more is no flow but the
 // absurd number of a transmitter without a signal, and would spoil the registers.
 const largestMassFlow = 1e6
 
-// work is heat with absurd flows refused.
-func (q *equation) work(x State) (Result, error) {
-	r, err := q.heat(x)
-	if err == nil && !(r.MassFlow <= largestMassFlow) {
-		err = fmt.Errorf("mass flow of %g kg/s is more than any pipe carries", r.MassFlow)
+// work is the equation that [Work] tells of.
+func (q *equation) work(m *medium, x *State) (r Result, err error) {
+	if r.Inlet, err = m.inlet(x); err != nil {
+		return r, err
 	}
-	return r, err
-}
-
-// heat is the equation that [Work] tells of.
-func (q *equation) heat(x State) (Result, error) {
-	var r Result
-	var err error
-	if r.Inlet, err = q.balance(x.Inlet, x.Pressure); err != nil {
-		return Result{}, fmt.Errorf("inlet: %w", err)
+	if r.Outlet, err = m.outlet(x); err != nil {
+		return r, err
 	}
-	if r.Outlet, err = q.balance(x.Outlet, x.OutletPressure); err != nil {
-		return Result{}, fmt.Errorf("outlet: %w", err)
-	}
-	r.MassFlow, r.Density = x.Flow, r.Inlet.Density
-	if q.MeterAtOutlet {
-		r.Density = r.Outlet.Density
-	}
-	switch q.FlowKind {
-	case VolumeFlow:
-		r.MassFlow *= r.Density
-	case MolarFlow:
-		r.MassFlow *= q.Fluid.MolarMass()
-	}
-	r.Duty = r.MassFlow * (r.Outlet.Enthalpy - r.Inlet.Enthalpy)
-	if q.Gives {
-		r.Duty = -r.Duty
+	r.Density, r.MassFlow, r.Duty = q.heat(m, x, &r.Inlet, &r.Outlet)
+	if !(r.MassFlow <= largestMassFlow) {
+		return r, fmt.Errorf("mass flow of %g kg/s is more than any pipe carries", r.MassFlow)
 	}
 	return r, nil
 }
 
-// saturated reports whether either end of the stream is so near saturation that
-// its heat may be latent, and says which.
-func (q *equation) saturated(x State) (string, bool) {
-	for _, end := range [...]struct {
-		name string
-		T, p float64
-	}{{"inlet", x.Inlet, x.Pressure}, {"outlet", x.Outlet, x.OutletPressure}} {
-		lo, hi := q.Fluid.Span(end.p)
-		switch {
-		case q.Fluid.Phase() == thermo.Liquid && end.T > hi-q.Margin:
-			return fmt.Sprintf("%s at %.2f °C is within %g K of boiling at %.2f °C (%.1f kPa absolute): heat may be latent", end.name, end.T-273.15, q.Margin, hi-273.15, end.p/1e3), true
-		case q.Fluid.Phase() == thermo.Gas && end.T < lo+q.Margin:
-			return fmt.Sprintf("%s at %.2f °C is within %g K of the dew point at %.2f °C (%.1f kPa absolute): heat may be latent", end.name, end.T-273.15, q.Margin, lo-273.15, end.p/1e3), true
-		}
+func (q *equation) heat(m *medium, x *State, in, out *thermo.Balance) (density, mass, duty float64) {
+	density, mass = in.Density, x.Flow
+	if q.MeterAtOutlet {
+		density = out.Density
 	}
-	return "", false
+	switch q.FlowKind {
+	case VolumeFlow:
+		mass *= density
+	case MolarFlow:
+		mass *= m.MolarMass()
+	}
+	duty = mass * (out.Enthalpy - in.Enthalpy)
+	if q.Gives {
+		duty = -duty
+	}
+	return density, mass, duty
 }
