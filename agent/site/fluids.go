@@ -1,49 +1,83 @@
 package site
 
 import (
+	"errors"
 	"maps"
 	"slices"
+	"strings"
 	"sync"
 
 	"go.yaml.in/yaml/v3"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/aqueous"
-	"heatreeve/thermo/gas"
-	"heatreeve/thermo/unit"
-	"heatreeve/thermo/water"
+	"heatreeve/thermo/named"
+	"heatreeve/thermo/unit/near"
 )
 
-// builtIn are the fluids that need no declaration.
-var builtIn = sync.OnceValue(func() map[string]thermo.Fluid {
-	return map[string]thermo.Fluid{
-		"water":   water.Liquid(),
-		"steam":   water.Steam(),
-		"dry air": gas.DryAir(),
+// kind is one way to declare a fluid: a key, and those that may stand beside it.
+type kind struct {
+	key    string
+	beside []string
+	// read makes the fluid of what stands under the key, or returns nil where
+	// there is a fault.
+	read func(r *reader, d declaration) thermo.Fluid
+}
+
+// declaration is a fluid of the file: v stands under the key of its kind, and
+// beside it the rest of o.
+type declaration struct {
+	name string
+	v    value
+	o    object
+}
+
+var kinds = sync.OnceValue(func() []kind {
+	var ks []kind
+	for _, solute := range aqueous.Solutes() {
+		ks = append(ks, kind{solute, []string{"uncertainty"}, solution(solute)})
 	}
+	return append(ks,
+		kind{"gas", nil, mixture},
+		kind{"table", nil, tabled},
+	)
 })
 
-func species() []string { return gas.Species() }
+func fluidKinds() []string {
+	var names []string
+	for _, k := range kinds() {
+		names = append(names, k.key)
+	}
+	return names
+}
 
-// fluidKinds are the keys of which a declared fluid has one.
-func fluidKinds() []string { return append(aqueous.Solutes(), "gas", "table") }
+// fluidKeys are all the keys of a declaration, each once.
+func fluidKeys() []string {
+	names := fluidKinds()
+	for _, k := range kinds() {
+		for _, key := range k.beside {
+			if !slices.Contains(names, key) {
+				names = append(names, key)
+			}
+		}
+	}
+	return names
+}
 
-func fluidKeys() []string { return append(fluidKinds(), "uncertainty") }
-
-// readFluids reads the declared fluids, right or wrong, beside the built-in ones.
+// readFluids reads the declared fluids, right or wrong.
 func (r *reader) readFluids(o object) {
-	r.site.Fluids, r.fluids = maps.Clone(builtIn()), maps.Clone(builtIn())
+	r.site.Fluids, r.fluids = make(map[string]thermo.Fluid), make(map[string]thermo.Fluid)
 	v, ok := o.get("fluids")
 	if !ok {
 		return
 	}
 	for _, e := range v.entries() {
 		e.key.label(e.name)
-		if _, taken := builtIn()[e.name]; taken {
+		if _, err := named.Lookup(e.name); err == nil {
 			e.key.fault("is built in; choose another name for a fluid of your own")
 			continue
 		}
-		f := r.declare(e)
+		f := r.declare(e.name, e.value)
 		r.fluids[e.name] = f
 		if f != nil {
 			r.site.Fluids[e.name] = f
@@ -51,93 +85,101 @@ func (r *reader) readFluids(o object) {
 	}
 }
 
-// fluid finds the fluid that a load names.
+// fluid finds the fluid that a load names: one of the file, or one that is built in,
+// which goes by its usual name.
 func (r *reader) fluid(v value) (string, thermo.Fluid) {
 	s, ok := v.text()
 	if !ok {
 		return "", nil
 	}
-	f, ok := r.fluids[s]
-	if !ok {
-		known := slices.Sorted(maps.Keys(r.fluids))
-		v.fault("fluid %q is not known%s; known: %s", clip(s), nearOf(s, known), list(known))
+	if f, declared := r.fluids[s]; declared {
+		return s, f
 	}
-	return s, f
+	f, err := named.Lookup(s)
+	var unknown *named.UnknownError
+	switch {
+	case err == nil:
+		return f.Name(), f
+	case errors.As(err, &unknown):
+		v.fault("fluid %q is not known%s", clip(s), r.instead(s))
+	default:
+		v.fault("%v", err)
+	}
+	return s, nil
+}
+
+// instead tells the fluids that there are, those first that s may have meant.
+func (r *reader) instead(s string) string {
+	declared := slices.Sorted(maps.Keys(r.fluids))
+	say := ""
+	if guess := append(near.Names(s, declared), named.Near(s)...); len(guess) > 0 {
+		say = "; near: " + list(guess)
+	}
+	if len(declared) > 0 {
+		say += "; declared: " + list(declared)
+	}
+	return say + "; built in: " + strings.Join(named.Names(), ", ")
 }
 
 // declare builds a fluid, or returns nil where there is a fault.
-func (r *reader) declare(e entry) thermo.Fluid {
-	o := e.objectOf(fluidKeys())
-	var kind string
-	for _, k := range fluidKinds() {
-		v, ok := o.get(k)
-		switch {
-		case ok && kind != "":
-			v.fault("stands beside %q; a fluid is one or the other", kind)
-			return nil
-		case ok:
-			kind = k
+func (r *reader) declare(name string, v value) thermo.Fluid {
+	o := v.objectOf(fluidKeys())
+	var found []kind
+	for _, k := range kinds() {
+		if _, ok := o.get(k.key); ok {
+			found = append(found, k)
 		}
 	}
-	if v, ok := o.get("uncertainty"); ok && (kind == "gas" || kind == "table") {
-		v.fault("is that of a solution's strength; a table has its own within it, a gas has none")
-	}
-	switch kind {
-	case "":
-		if e.node.Kind == yaml.MappingNode && len(o.has) == len(e.node.Content)/2 {
-			o.fault("says not what the fluid is; want one of: %s", list(fluidKinds()))
+	switch {
+	case len(found) > 1:
+		o.has[found[1].key].fault("stands beside %q; a fluid is one or the other", found[0].key)
+		return nil
+	case len(found) == 0:
+		if v.node.Kind == yaml.MappingNode && len(o.has) == len(v.node.Content)/2 {
+			o.fault("says not what the fluid is; want one of: %s", strings.Join(fluidKinds(), ", "))
 		}
 		return nil
-	case "gas":
-		return mixture(o.has[kind].value)
-	case "table":
-		return r.tabled(e.name, o.has[kind].value)
 	}
-	return solution(kind, o)
+	k := found[0]
+	for key, e := range o.has {
+		if key != k.key && !slices.Contains(k.beside, key) {
+			e.key.fault("goes not with %s; it goes with: %s", k.key, strings.Join(goesWith(key), ", "))
+		}
+	}
+	return k.read(r, declaration{name, o.has[k.key].value, o})
 }
 
-// solution is a glycol in water by mass, such as {propylene glycol: 32 %}.
-// The uncertainty is the standard uncertainty of the strength, in the same
-// percent; without one the strength is taken as exact.
-func solution(solute string, o object) thermo.Fluid {
-	strength := o.has[solute].value
-	x, ok := strength.quantity(unit.Ratio)
-	if !ok {
-		return nil
-	}
-	var u float64
-	if v, given := o.get("uncertainty"); given {
-		if u, ok = v.within(0, 0.1, "0 % to 10 %", unit.Ratio); !ok {
-			return nil
+// goesWith lists the kinds beside which a key may stand.
+func goesWith(key string) []string {
+	var names []string
+	for _, k := range kinds() {
+		if slices.Contains(k.beside, key) {
+			names = append(names, k.key)
 		}
 	}
-	f, err := aqueous.New(solute, x.SI(), u)
-	if err != nil {
-		strength.fault("%v", err)
-		return nil
-	}
-	return f
+	return names
 }
 
-// mixture is a gas by volume, such as {N2: 71 %, O2: 29 %}.
-func mixture(v value) thermo.Fluid {
-	o := v.objectOf(species())
-	shares := make(map[string]float64, len(o.has))
-	for formula, e := range o.has {
-		share, ok := e.within(0, 1, "0 % to 100 %", unit.Ratio)
-		if !ok {
-			return nil
+// ParseFluid reads a fluid as it stands in a site file, for a command line: a name such
+// as "water" or "propylene glycol 32 %", or the YAML of a declaration such as
+// "{gas: {N2: 79 %, O2: 21 %}}". The error is a [Faults] where it is YAML. A gauge
+// pressure is refused: there is no barometer.
+func ParseFluid(text string) (thermo.Fluid, error) {
+	if !strings.ContainsAny(text, "{:\n") {
+		return named.Lookup(text)
+	}
+	s := &scope{file: "fluid"}
+	if root := s.document([]byte(text)); len(s.faults) == 0 {
+		v := value{scope: s, node: root}
+		r := &reader{site: &Site{}, file: s.file}
+		f := r.declare("fluid", v)
+		if r.gauge {
+			v.fault("has a gauge pressure; write the absolute one, such as 3 bar")
 		}
-		shares[formula] = share
+		if len(s.faults) == 0 && f != nil {
+			return f, nil
+		}
 	}
-	if len(shares) == 0 || len(shares) < len(v.node.Content)/2 {
-		v.emptyMapping("shares by volume, such as N2: 79 %, O2: 21 %")
-		return nil
-	}
-	f, err := gas.New(shares)
-	if err != nil {
-		v.fault("%v", err)
-		return nil
-	}
-	return f
+	s.faults.sort()
+	return nil, s.faults
 }

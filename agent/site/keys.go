@@ -4,13 +4,14 @@ import "slices"
 
 // keys are the keys of each block. A star stands for a name that the file gives.
 var keys = map[string][]string{
-	"":                           {"site", "timezone", "barometer", "broker", "fluids", "tags", "loads", "timing", "history"},
-	"broker":                     {"url", "client_id", "ca", "certificate", "key", "server_name", "username", "password_file", "password_env"},
-	"timing":                     {"grid", "lateness", "ahead", "commit"},
-	"history":                    {"keep", "size"},
-	"tags.*":                     {"topic", "unit", "value", "time", "time_unit", "accuracy", "max_age", "range"},
-	"loads.*":                    {"stream", "design"},
-	"loads.*.stream":             {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes", "margin", "idle_below"},
+	"":        {"site", "timezone", "barometer", "broker", "fluids", "tags", "loads", "timing", "history"},
+	"broker":  {"url", "client_id", "ca", "certificate", "key", "server_name", "username", "password_file", "password_env"},
+	"timing":  {"grid", "lateness", "ahead", "commit"},
+	"history": {"keep", "size"},
+	"tags.*":  {"topic", "unit", "value", "time", "time_unit", "accuracy", "max_age", "range"},
+	"loads.*": {"stream", "design"},
+	"loads.*.stream": {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes",
+		"relative_humidity", "dew_point", "wet_bulb", "humidity_ratio", "coil", "margin", "idle_below"},
 	"loads.*.design":             {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
 	"fluids.*.table":             {"source", "phase", "points", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range"},
 	"fluids.*.table.uncertainty": {"cp", "density"},

@@ -39,8 +39,8 @@ func (r *reader) load(e entry) HeatLoad {
 }
 
 func (r *reader) stream(o object) Stream {
-	s := Stream{Margin: 5}
-	if v, ok := o.need("fluid", "a declared fluid, or water, steam or dry air"); ok {
+	s := Stream{Margin: 5, Humidity: nowhere, Coil: nowhere}
+	if v, ok := o.need("fluid", "a declared fluid, or a built-in one such as water or dry air"); ok {
 		s.FluidName, s.Fluid = r.fluid(v)
 	}
 	s.Flow, s.FlowKind = r.needSource(o, "flow", "a tag or a constant such as 12 m3/h", flows...)
@@ -53,6 +53,7 @@ func (r *reader) stream(o object) Stream {
 	}
 	o.service(&s)
 	o.meter(&s)
+	r.moisture(o, &s)
 	if v, ok := o.get("margin"); ok {
 		s.Margin, _ = v.within(0, 100, "0 K to 100 K", unit.TemperatureDifference)
 	}
@@ -110,8 +111,11 @@ func (o object) meter(s *Stream) {
 
 // checkStream looks at what does not go together.
 func (o object) checkStream(s Stream) {
-	if flow, ok := o.get("flow"); ok && s.FlowKind == unit.MolarFlow && s.Fluid != nil {
+	if flow, ok := o.get("flow"); ok && s.Fluid != nil {
 		switch {
+		case s.Fluid.Phase() == thermo.Solid && s.FlowKind != unit.MassFlow && s.FlowKind != 0:
+			flow.fault("%q is a solid, which has a mass flow; found a %s", s.FluidName, s.FlowKind)
+		case s.FlowKind != unit.MolarFlow:
 		case s.Fluid.Phase() != thermo.Gas:
 			flow.fault("a normal or standard volume flow is for gases, and %q is a %s", s.FluidName, s.Fluid.Phase())
 		case s.Fluid.MolarMass() <= 0:

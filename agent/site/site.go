@@ -27,7 +27,7 @@ type Site struct {
 	Zone      *time.Location // of days and months in reports
 	Barometer float64        // Pa; 0 when the file gives none, and then it has no gauge pressure
 	Broker    Broker
-	Fluids    map[string]thermo.Fluid // the declared and the built-in ones
+	Fluids    map[string]thermo.Fluid // the declared ones
 	Tags      []Tag                   // in file order
 	Loads     []HeatLoad              // in file order
 	Timing    Timing
@@ -45,7 +45,7 @@ type Tag struct {
 	TimeFormat    string // "s", "ms", "us", "rfc3339"; "" to tell by shape and magnitude
 	Accuracy      Accuracy
 	MaxAge        time.Duration // how long a reading is held; default 60 s
-	Min, Max      float64       // instrument range, SI, absolute; when absent infinite, or what no pipe carries
+	Min, Max      float64       // instrument range, SI, absolute; when absent what no plant has
 	QoS           byte          // always 1: each reading is acknowledged when it is on disk
 }
 

@@ -54,7 +54,7 @@ func TestParse(t *testing.T) {
 	if s.History != (History{730 * 24 * time.Hour, 256 << 20}) {
 		t.Errorf("history without a block = %+v", s.History)
 	}
-	if len(s.Fluids) != 5 || s.Fluids["glycol"] == nil || s.Fluids["flue"] == nil || s.Fluids["water"] == nil {
+	if len(s.Fluids) != 2 || s.Fluids["glycol"] == nil || s.Fluids["flue"] == nil {
 		t.Errorf("fluids = %v", s.Fluids)
 	}
 	if len(s.Tags) != 5 || len(s.Loads) != 2 || s.Tags[4].Name != "GT-1" || s.Loads[1].Name != "drying air" {

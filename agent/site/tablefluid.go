@@ -9,7 +9,8 @@ import (
 )
 
 // tabled is a fluid by a table of its own: temperature, cp and density a row.
-func (r *reader) tabled(name string, v value) thermo.Fluid {
+func tabled(r *reader, d declaration) thermo.Fluid {
+	v := d.v
 	o := v.object("fluids.*.table")
 	before := len(v.faults)
 	var source string
@@ -25,7 +26,7 @@ func (r *reader) tabled(name string, v value) thermo.Fluid {
 	if len(v.faults) > before {
 		return nil
 	}
-	f, err := table.New(name, source, points, opts)
+	f, err := table.New(d.name, source, points, opts)
 	if err != nil {
 		for text := range strings.Lines(err.Error()) {
 			ps.fault("%s", strings.TrimSpace(text))
@@ -38,7 +39,7 @@ func (r *reader) tabled(name string, v value) thermo.Fluid {
 // tableOptions reads what stands beside the rows.
 func (r *reader) tableOptions(o object) table.Options {
 	var opts table.Options
-	if v, ok := o.need("phase", "liquid or gas"); ok {
+	if v, ok := o.need("phase", "liquid, gas or solid"); ok {
 		opts.Phase = phase(v)
 	}
 	if v, ok := o.get("pressure"); ok {
@@ -76,11 +77,13 @@ func (o object) relative(key string) float64 {
 }
 
 func phase(v value) thermo.Phase {
-	switch s, _ := v.oneOf("liquid", "gas"); s {
+	switch s, _ := v.oneOf("liquid", "gas", "solid"); s {
 	case "liquid":
 		return thermo.Liquid
 	case "gas":
 		return thermo.Gas
+	case "solid":
+		return thermo.Solid
 	}
 	return 0
 }

@@ -10,7 +10,7 @@ import (
 )
 
 // measured are the dimensions that a load can use.
-var measured = []unit.Dimension{unit.Temperature, unit.Pressure, unit.MassFlow, unit.VolumeFlow, unit.MolarFlow}
+var measured = []unit.Dimension{unit.Temperature, unit.Pressure, unit.MassFlow, unit.VolumeFlow, unit.MolarFlow, unit.Ratio}
 
 // readTags reads every tag, and gives a tag at fault its place too, so that loads
 // that name it are not reported as well.
@@ -92,6 +92,8 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 		t.Min, t.Max = -largest, largest
 	case u.Dimension == unit.Temperature:
 		t.Min, t.Max = 0, hottest
+	case u.Dimension == unit.Ratio:
+		t.Min, t.Max = 0, 1
 	default:
 		t.Min, t.Max = 0, strongest
 	}
@@ -99,7 +101,8 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 }
 
 // What a tag without a range may read, SI: temperatures from absolute zero, absolute
-// pressures from a vacuum, up to what no instrument of a plant shows.
+// pressures from a vacuum, up to what no instrument of a plant shows. A ratio is from
+// 0 % to 100 %.
 const (
 	hottest   = 5000 // K
 	strongest = 1e9  // Pa

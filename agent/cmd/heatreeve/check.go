@@ -59,7 +59,8 @@ func notes(s *site.Site) []string {
 func idleTags(s *site.Site) []string {
 	used := make([]bool, len(s.Tags))
 	for _, l := range s.Loads {
-		for _, src := range []site.Source{l.Stream.Flow, l.Stream.Inlet, l.Stream.Outlet, l.Stream.Pressure, l.Stream.OutletPressure} {
+		st := l.Stream
+		for _, src := range []site.Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure, st.Humidity, st.Coil} {
 			if !src.Constant() {
 				used[src.Tag] = true
 			}

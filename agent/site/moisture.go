@@ -1,0 +1,90 @@
+package site
+
+import (
+	"strings"
+
+	"go.yaml.in/yaml/v3"
+
+	"heatreeve/thermo"
+	"heatreeve/thermo/unit"
+)
+
+// moistAirMargin is the default margin of a gas whose vapour content is known, in K:
+// its dew point is measured, not supposed.
+const moistAirMargin = 1
+
+// measures are the ways to say how humid air is.
+var measures = []struct {
+	key     string
+	kind    thermo.MoistureKind
+	is      unit.Dimension
+	symbols []string // of the units of a ratio; percent of one is not percent of the other
+	example string
+}{
+	{"relative_humidity", thermo.RelativeHumidity, unit.Ratio, []string{"%"}, "50 %"},
+	{"dew_point", thermo.DewPoint, unit.Temperature, nil, "12 °C"},
+	{"wet_bulb", thermo.WetBulb, unit.Temperature, nil, "18 °C"},
+	{"humidity_ratio", thermo.HumidityRatio, unit.Ratio, []string{"g/kg", "kg/kg"}, "8 g/kg"},
+}
+
+func measureKeys() []string {
+	var names []string
+	for _, m := range measures {
+		names = append(names, m.key)
+	}
+	return names
+}
+
+// moisture reads how humid the stream is, and the coil that it passes.
+func (r *reader) moisture(o object, s *Stream) {
+	_, humid := s.Fluid.(thermo.Humid)
+	_, wet := s.Fluid.(thermo.Wet)
+	if humid || wet {
+		s.Margin = moistAirMargin
+	}
+	for _, m := range measures {
+		v, ok := o.get(m.key)
+		switch {
+		case !ok:
+		case s.Fluid != nil && !humid:
+			v.fault("is about moist air, and the fluid is %q", s.FluidName)
+		case s.HumidityKind != 0:
+			v.fault("is one measure too many; want one of: %s", strings.Join(measureKeys(), ", "))
+		default:
+			s.HumidityKind = m.kind
+			s.Humidity, _ = r.source(v, m.is)
+			r.inUnits(v, s.Humidity, m.symbols)
+		}
+	}
+	if humid && s.HumidityKind == 0 && o.node.Kind == yaml.MappingNode {
+		o.fault("does not say how humid %s is at the inlet; want one of: %s, each a tag or a constant", s.FluidName, strings.Join(measureKeys(), ", "))
+	}
+	if v, ok := o.get("coil"); ok {
+		s.Coil, _ = r.source(v, unit.Temperature)
+		s.HasCoil = true
+		if s.Fluid != nil && !humid && !wet {
+			v.fault("is about a moist gas, and the fluid is %q", s.FluidName)
+		}
+	}
+}
+
+// inUnits holds a ratio to the units that say what it is a ratio of.
+func (r *reader) inUnits(v value, s Source, symbols []string) {
+	if symbols == nil {
+		return
+	}
+	var u unit.Unit
+	if !s.Constant() {
+		u = r.site.Tags[s.Tag].Unit
+	} else if q, err := unit.ParseAs(v.node.Value, unit.Ratio); err == nil {
+		u = q.Unit
+	}
+	for _, symbol := range symbols {
+		if u.Symbol == symbol || u.Symbol == "" {
+			return
+		}
+	}
+	if u.Dimension == unit.Ratio {
+		v.fault("is in %v; want %s", u, strings.Join(symbols, " or "))
+	}
+}

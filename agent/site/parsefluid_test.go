@@ -1,0 +1,78 @@
+package site
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+	"testing"
+)
+
+func TestParseFluid(t *testing.T) {
+	for _, tt := range []struct{ text, name string }{
+		{"water", "water"},
+		{"Propylene glycol 32 %", "propylene glycol 32 %"},
+		{"{propylene glycol: 32 %, uncertainty: 0.6 %}", "propylene glycol 32 %"},
+		{"{gas: {N2: 100 %}}", "nitrogen"},
+		{"gas: {O2: 100 %}", "oxygen"},
+		{"table:\n  source: a sheet\n  phase: solid\n  points: [[0 °C, 900 J/(kg K), 2000 kg/m3], [100 °C, 950 J/(kg K), 1990 kg/m3]]\n", "fluid"},
+	} {
+		f, err := ParseFluid(tt.text)
+		if err != nil || f.Name() != tt.name {
+			t.Errorf("ParseFluid(%q) = %v, %v; want %q", tt.text, f, err, tt.name)
+		}
+	}
+}
+
+func TestParseFluidFaults(t *testing.T) {
+	for _, tt := range []struct{ text, want string }{
+		{"watr", `fluid "watr" is not known; near: "water"; known: `},
+		{"{gas: {N2: 79 %, n2: 21 %}}", `fluid:1:18: gas.n2: unknown key "n2"; near: "N2"`},
+		{"{gas: {N2: 79 %}}", "fluid:1:7: gas: the mole fractions add up to 0.79"},
+		{"{gas: {N2: 79 %}", "this is not YAML"},
+		{"{}", "says not what the fluid is; want one of: ethylene glycol"},
+		{"{a: 1}", `unknown key "a"`},
+		{"- a: b", "want a mapping of keys, found a list"},
+		{"{table: {source: a sheet, phase: gas, pressure: 1 barg, points: [[0 °C, 1 kJ/(kg K), 1.2 kg/m3], [90 °C, 1 kJ/(kg K), 0.9 kg/m3]]}}", "write the absolute one"},
+	} {
+		f, err := ParseFluid(tt.text)
+		if err == nil || !strings.Contains(err.Error(), tt.want) {
+			t.Errorf("ParseFluid(%q) = %v, %v; want ...%q...", tt.text, f, err, tt.want)
+		}
+	}
+}
+
+// Whatever the text is, there is a fluid or an error with words, of one line a fault.
+func FuzzParseFluid(f *testing.F) {
+	for _, s := range []string{"water", "{gas: {N2: 100 %}}", "{propylene glycol: 32 %, uncertainty: 0.6 %}", "{a: [", "a: &b {c: *b}"} {
+		f.Add(s)
+	}
+	f.Fuzz(func(t *testing.T, text string) {
+		fluid, err := ParseFluid(text)
+		switch {
+		case err == nil && fluid == nil, err != nil && err.Error() == "":
+			t.Errorf("ParseFluid(%q) = %v, %v", text, fluid, err)
+		}
+		var faults Faults
+		if errors.As(err, &faults) {
+			for _, fault := range faults {
+				if strings.ContainsAny(fault.Error(), "\r\n") {
+					t.Errorf("%q is more than a line", fault)
+				}
+			}
+		}
+	})
+}
+
+func ExampleParseFluid() {
+	f, err := ParseFluid("{gas: {N2: 79 %, O2: 21 %}}")
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	fmt.Println(f.Name())
+	_, err = ParseFluid("propylene glycol 32")
+	fmt.Println(err)
+	// Output:
+	// gas of N2 79 %, O2 21 %
+	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 10 %"
+}

@@ -1,0 +1,31 @@
+package site
+
+import (
+	"heatreeve/thermo"
+	"heatreeve/thermo/aqueous"
+	"heatreeve/thermo/unit"
+)
+
+// solution reads a solute in water by mass, such as {propylene glycol: 32 %}.
+// The uncertainty is the standard uncertainty of the strength, in the same
+// percent; without one the strength is taken as exact.
+func solution(solute string) func(*reader, declaration) thermo.Fluid {
+	return func(_ *reader, d declaration) thermo.Fluid {
+		x, ok := d.v.quantity(unit.Ratio)
+		if !ok {
+			return nil
+		}
+		var u float64
+		if v, given := d.o.get("uncertainty"); given {
+			if u, ok = v.within(0, 0.1, "0 % to 10 %", unit.Ratio); !ok {
+				return nil
+			}
+		}
+		f, err := aqueous.New(solute, x.SI(), u)
+		if err != nil {
+			d.v.fault("%v", err)
+			return nil
+		}
+		return f
+	}
+}
