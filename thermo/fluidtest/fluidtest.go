@@ -22,6 +22,8 @@ import (
 //   - an evaluation does not allocate;
 //   - the uncertainties are fractions below 0.5 at every state;
 //   - where f is a [thermo.Balancer], its balance is that of At;
+//   - where f is a [thermo.Wet], Sensible is At within the phase, goes on below the dew
+//     point without a step and with ∂h/∂T = cp, and is refused beyond the box;
 //   - name, source, phase and molar mass are filled in.
 func Run(t *testing.T, f thermo.Fluid) {
 	t.Helper()
@@ -43,6 +45,7 @@ var checks = []struct {
 	{"rising", suite.rising},
 	{"uncertainty", suite.uncertainty},
 	{"balance", suite.balance},
+	{"sensible", suite.sensible},
 	{"box", suite.box},
 	{"phase", suite.phase},
 	{"nonsense", suite.nonsense},
