@@ -1,0 +1,173 @@
+package air
+
+import (
+	"encoding/csv"
+	"errors"
+	"fmt"
+	"maps"
+	"math"
+	"os"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+
+	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
+)
+
+func mustMoist(t testing.TB, w float64) thermo.Wet {
+	t.Helper()
+	f, err := Moist(w)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return f
+}
+
+func TestConformance(t *testing.T) {
+	for _, w := range []float64{0, 1e-5, 0.008, 0.03, 0.1, 0.25} {
+		f := mustMoist(t, w)
+		t.Run(f.Name(), func(t *testing.T) { fluidtest.Run(t, f) })
+	}
+	t.Run("live", func(t *testing.T) { fluidtest.Run(t, Live()) })
+}
+
+// row is a line of testdata/humid-air.csv.
+type row struct {
+	T, rh, p, w, h, v, rho, cp, iapwsRho, iapwsCp float64
+}
+
+func rows(t *testing.T) []row {
+	t.Helper()
+	file, err := os.Open("testdata/humid-air.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer file.Close()
+	c := csv.NewReader(file)
+	c.Comment = '#'
+	lines, err := c.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var out []row
+	for _, l := range lines[1:] {
+		var r row
+		for k, to := range []*float64{&r.T, &r.rh, &r.p, &r.w, &r.h, &r.v, &r.rho, &r.cp, &r.iapwsRho, &r.iapwsCp} {
+			if l[k] == "" {
+				*to = math.NaN() // IAPWS has no row for dry air
+				continue
+			}
+			if *to, err = strconv.ParseFloat(l[k], 64); err != nil {
+				t.Fatalf("row %q: %v", l, err)
+			}
+		}
+		out = append(out, r)
+	}
+	if len(out) != 90 {
+		t.Fatalf("%d rows, want 90", len(out))
+	}
+	return out
+}
+
+// worst keeps the largest deviation by name.
+type worst map[string]float64
+
+func (w worst) String() string {
+	var out []string
+	for _, name := range slices.Sorted(maps.Keys(w)) {
+		out = append(out, fmt.Sprintf("%s %.2g", name, w[name]))
+	}
+	return strings.Join(out, ", ")
+}
+
+func (w worst) note(name string, d float64) { w[name] = max(w[name], math.Abs(d)) }
+
+// TestAgainstTable holds every row to the digits printed (7e-7 relative) for psychrolib, and to the
+// largest deviations from the real mixture that were measured there: 0.16 % in density, 1.69 % in cp.
+func TestAgainstTable(t *testing.T) {
+	tolerance := worst{"W": 7e-7, "h": 7e-7, "v": 7e-7, "density": 7e-7, "cp": 7e-7, "real density": 1.6e-3, "real cp": 1.69e-2}
+	got := worst{}
+	for _, r := range rows(t) {
+		w, err := HumidityRatio(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: r.rh}, r.T, r.p)
+		if err != nil {
+			t.Errorf("%+v: %v", r, err)
+			continue
+		}
+		f := mustMoist(t, w)
+		s, err := f.At(r.T, r.p)
+		if err != nil {
+			t.Errorf("%+v: %v", r, err)
+			continue
+		}
+		dry := 1 + w
+		deviations := worst{}
+		deviations.note("W", beyondDigits(w-r.w, 0.5e-8)/max(r.w, 1e-3))
+		deviations.note("h", beyondDigits(s.Enthalpy*dry-r.h, 0.005)/max(math.Abs(r.h), 1e3))
+		deviations.note("v", beyondDigits(dry/s.Density-r.v, 0.5e-6)/r.v)
+		deviations.note("density", beyondDigits(s.Density-r.rho, 0.5e-6)/r.rho)
+		deviations.note("cp", beyondDigits(s.Cp*dry-r.cp, 0.005)/r.cp)
+		if !math.IsNaN(r.iapwsRho) {
+			deviations.note("real density", beyondDigits(s.Density-r.iapwsRho, 0.5e-5)/r.iapwsRho)
+			deviations.note("real cp", beyondDigits(s.Cp*dry-r.iapwsCp, 0.005)/r.iapwsCp)
+			cp, density := f.Uncertainty(r.T, r.p)
+			if math.Sqrt(3)*cp < deviations["real cp"] || math.Sqrt(3)*density < deviations["real density"] {
+				t.Errorf("%+v: standard uncertainties %g and %g do not cover %v", r, cp, density, deviations)
+			}
+		}
+		for name, d := range deviations {
+			got.note(name, d)
+			if d > tolerance[name] {
+				t.Errorf("%g K, RH %g, %g Pa: %s is off by %.3g, more than %g", r.T, r.rh, r.p, name, d, tolerance[name])
+			}
+		}
+	}
+	t.Logf("worst relative deviations: %s", got)
+}
+
+// beyondDigits takes off what the last digit printed may be off by.
+func beyondDigits(d, half float64) float64 { return math.Max(math.Abs(d)-half, 0) }
+
+// Below the dew point At refuses and Sensible goes on with the same line.
+func TestSensibleBelowTheDewPoint(t *testing.T) {
+	f := mustMoist(t, 0.01)
+	dew, _ := f.Span(101325)
+	if math.Abs(dew-zero-14.04) > 0.02 { // 10 g/kg at 101.325 kPa, read off a psychrometric chart
+		t.Errorf("dew point %g °C", dew-zero)
+	}
+	_, err := f.At(dew-1, 101325)
+	e := new(thermo.RangeError)
+	if !errors.As(err, &e) || e.Why != "dew or frost point" || e.Bound != dew || !e.Below {
+		t.Errorf("At below the dew point: %v", err)
+	}
+	s, err := f.Sensible(dew-1, 101325)
+	above, err2 := f.At(dew+1, 101325)
+	if err := errors.Join(err, err2); err != nil {
+		t.Fatal(err)
+	}
+	if d := above.Enthalpy - s.Enthalpy; math.Abs(d-2*s.Cp) > 1e-8 {
+		t.Errorf("2 K across the dew point take %g J/kg, want cp times 2 K = %g", d, 2*s.Cp)
+	}
+}
+
+func TestMoistRefuses(t *testing.T) {
+	for _, w := range []float64{-1e-9, 0.2501, 8, math.NaN(), math.Inf(1)} {
+		if f, err := Moist(w); err == nil || !strings.Contains(err.Error(), "humidity ratio") {
+			t.Errorf("Moist(%g) = %v, %v", w, f, err)
+		}
+	}
+}
+
+func TestLiveCarries(t *testing.T) {
+	f, err := Live().Carrying(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: 0.5}, 298.15, 101325)
+	if err != nil || f.Name() != "moist air 9.881 g/kg" { // 9.88 g/kg on every psychrometric chart
+		t.Errorf("25 °C, 50 %%: %v, %v", f, err)
+	}
+	if f, err := Live().Carrying(thermo.Moisture{Kind: thermo.DewPoint, Value: 300}, 290, 101325); f != nil || err == nil {
+		t.Errorf("a dew point above the temperature: %v, %v", f, err)
+	}
+	if Live().Name() != "moist air" {
+		t.Errorf("name %q", Live().Name())
+	}
+}
