@@ -17,9 +17,9 @@ import (
 	"heatreeve/thermo/unit/near"
 )
 
-// Lookup returns the fluid of that name. The error of an unknown name tells the
-// near ones and all; that of a name without its strength, or with a wrong one, how it
-// is written.
+// Lookup returns the fluid of that name. The error of an unknown name is an
+// *[UnknownError]; that of a name without its strength, or with a wrong one, says how
+// it is written.
 func Lookup(name string) (thermo.Fluid, error) {
 	if w, ok := index().plain[fold(name)]; ok {
 		return w.make(strength{})
@@ -39,7 +39,18 @@ func Lookup(name string) (thermo.Fluid, error) {
 	if w, ok := index().strong[fold(name)]; ok {
 		return nil, fmt.Errorf("%s wants its strength as well: write %q%s", w.name, w.example(), w.hint())
 	}
-	return nil, unknown(name)
+	return nil, &UnknownError{name}
+}
+
+// UnknownError says that no fluid has the name, with the near ones and all.
+type UnknownError struct{ Name string }
+
+func (e *UnknownError) Error() string {
+	hint := ""
+	if guess := Near(e.Name); len(guess) > 0 {
+		hint = "; near: " + quoted(guess)
+	}
+	return fmt.Sprintf("fluid %q is not known%s; known: %s", clip(e.Name), hint, strings.Join(Names(), ", "))
 }
 
 // Names lists every name once, in the order of [List]; one that wants a strength has
@@ -74,14 +85,6 @@ func nearest(name string) []string {
 		}
 	}
 	return out
-}
-
-func unknown(name string) error {
-	hint := ""
-	if guess := Near(name); len(guess) > 0 {
-		hint = "; near: " + quoted(guess)
-	}
-	return fmt.Errorf("fluid %q is not known%s; known: %s", clip(name), hint, strings.Join(Names(), ", "))
 }
 
 // strength is how much of a solute there is, or of what else a name asks for.
