@@ -25,6 +25,8 @@ func streamOf(s site.Stream) loads.Stream {
 		Fluid: s.Fluid, Flow: loads.Source(s.Flow), FlowKind: flowKinds[s.FlowKind],
 		Inlet: loads.Source(s.Inlet), Outlet: loads.Source(s.Outlet),
 		Pressure: loads.Source(s.Pressure), OutletPressure: loads.Source(s.OutletPressure),
+		Humidity: loads.Source(s.Humidity), HumidityKind: s.HumidityKind,
+		Coil: loads.Source(s.Coil), HasCoil: s.HasCoil,
 		MeterAtOutlet: s.MeterAtOutlet, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow,
 	}
 }

@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
 )
 
@@ -13,7 +14,8 @@ import (
 // flickering signal does not fill the log.
 const tellEvery = time.Minute
 
-// watch tells the log when a load leaves its design, goes blind, or is well again.
+// watch tells the log when a load leaves its design, goes blind, or is well again, and
+// once of each load whose duty has a remark.
 type watch struct {
 	log  *slog.Logger
 	told []told
@@ -24,6 +26,7 @@ type told struct {
 	verdict design.Verdict
 	reason  string
 	at      time.Time
+	remark  bool
 }
 
 func newWatch(log *slog.Logger, loads int) *watch {
@@ -35,15 +38,19 @@ func newWatch(log *slog.Logger, loads int) *watch {
 func (w *watch) look(s *view.Snapshot, now time.Time) {
 	for i := range s.Loads {
 		figure, verdict := s.Current(i, now.UnixNano())
+		if s.Loads[i].Figure.At == 0 {
+			continue
+		}
 		t := &w.told[i]
-		if !notable(t.verdict) && !notable(verdict) || verdict == t.verdict && figure.Reason == t.reason {
+		if figure.Note != "" && !t.remark {
+			t.remark = true
+			w.log.Info("duty with a remark; from now on only the page at / and the metrics tell of it", "load", s.Loads[i].Name, "duty", kilowatts(figure.Duty), "note", figure.Note)
+		}
+		if !notable(t.verdict) && !notable(verdict) || verdict == t.verdict && figure.Reason == t.reason || now.Sub(t.at) < tellEvery {
 			continue
 		}
-		if s.Loads[i].Figure.At == 0 || now.Sub(t.at) < tellEvery {
-			continue
-		}
-		*t = told{verdict, figure.Reason, now}
-		w.tell(&s.Loads[i], figure.Duty, verdict, figure.Reason)
+		t.verdict, t.reason, t.at = verdict, figure.Reason, now
+		w.tell(&s.Loads[i], &figure, verdict)
 	}
 }
 
@@ -52,15 +59,18 @@ func notable(v design.Verdict) bool {
 	return v == design.Short || v == design.Over || v == design.Blind
 }
 
-func (w *watch) tell(l *view.Load, duty float64, v design.Verdict, reason string) {
+func (w *watch) tell(l *view.Load, f *loads.Figure, v design.Verdict) {
 	args := []any{"load", l.Name, "verdict", v.String()}
+	if f.Note != "" {
+		args = append(args, "note", f.Note)
+	}
 	switch v {
 	case design.Blind:
-		w.log.Warn("load is blind", append(args, "reason", reason)...)
+		w.log.Warn("load is blind", append(args, "reason", f.Reason)...)
 	case design.Short, design.Over:
-		w.log.Warn("duty has left its design", append(args, "duty", kilowatts(duty), "design", kilowatts(l.Design), "allow", fmt.Sprintf("%g %%", 100*l.Allow))...)
+		w.log.Warn("duty has left its design", append(args, "duty", kilowatts(f.Duty), "design", kilowatts(l.Design), "allow", fmt.Sprintf("%g %%", 100*l.Allow))...)
 	default:
-		w.log.Info("load is well again", append(args, "duty", kilowatts(duty))...)
+		w.log.Info("load is well again", append(args, "duty", kilowatts(f.Duty))...)
 	}
 }
 

@@ -43,3 +43,32 @@ func TestWatchTellsWhatChanges(t *testing.T) {
 		}
 	}
 }
+
+// A remark is told of once; a verdict that comes with one carries it.
+func TestWatchTellsOfARemarkOnce(t *testing.T) {
+	var out bytes.Buffer
+	w := newWatch(slog.New(slog.NewTextHandler(&out, nil)), 1)
+	for _, tt := range []struct {
+		verdict design.Verdict
+		note    string
+		want    []string
+	}{
+		{design.Holding, "", nil},
+		{design.Holding, "near freezing: outlet", []string{`msg="duty with a remark`, `load=hall duty="100.0 kW" note="near freezing: outlet"`}},
+		{design.Holding, "", nil},
+		{design.Holding, "near freezing: inlet", nil},
+		{design.Over, "near freezing: inlet", []string{`msg="duty has left its design" load=hall verdict=over note="near freezing: inlet"`}},
+	} {
+		out.Reset()
+		figure := loads.Figure{At: 1, Duty: 100e3, Remark: loads.Remark{Note: tt.note}}
+		w.look(&view.Snapshot{Loads: []view.Load{{Name: "hall", Figure: figure, Until: 1 << 62, Verdict: tt.verdict}}}, clock)
+		if got := out.String(); strings.Count(got, "\n") != min(len(tt.want), 1) {
+			t.Errorf("%v with %q: told %q", tt.verdict, tt.note, got)
+		}
+		for _, want := range tt.want {
+			if !strings.Contains(out.String(), want) {
+				t.Errorf("%v with %q: told %q, want %q", tt.verdict, tt.note, out.String(), want)
+			}
+		}
+	}
+}

@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"fmt"
@@ -41,7 +42,7 @@ func handler(reg *prometheus.Registry, health *health, log *slog.Logger) http.Ha
 	return mux
 }
 
-// front is the page at /: the loads with what is wrong with them, and where the
+// front is the page at /: the loads with what is wrong or remarkable with them, and where the
 // rest is.
 func front(w io.Writer, s *view.Snapshot, now time.Time) {
 	if s != nil {
@@ -52,7 +53,7 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 			if figure.Measured() {
 				duty = kilowatts(figure.Duty)
 			}
-			line := fmt.Sprintf("%-32s %-10s %14s  %s", s.Loads[i].Name, verdict, duty, figure.Reason)
+			line := fmt.Sprintf("%-32s %-10s %14s  %s", s.Loads[i].Name, verdict, duty, cmp.Or(figure.Reason, figure.Note))
 			fmt.Fprintln(w, strings.TrimRight(line, " "))
 		}
 		fmt.Fprintln(w)

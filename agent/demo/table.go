@@ -20,7 +20,7 @@ type TableOptions struct {
 const usualWidth = 80
 
 // Table draws the loads of a snapshot, one a line, and below them why a load is
-// blind, how the broker does, and the plant's time. No line is wider than the
+// blind or what to bear in mind with its duty, how the broker does, and the notice. No line is wider than the
 // width. Uncertainties are expanded, k = 2, with two digits (JCGM 100:2008,
 // 7.2.6), and the figures go as far.
 func Table(w io.Writer, s *view.Snapshot, o TableOptions) error {
@@ -40,14 +40,23 @@ func tableLines(s *view.Snapshot, o TableOptions) []string {
 	lines = append(lines, grid(s, o)...)
 	lines = append(lines, "")
 	for i := range s.Loads {
-		if f := &s.Loads[i].Figure; !f.Measured() {
-			lines = append(lines, fit(fmt.Sprintf("%s is blind: %s", s.Loads[i].Name, f.Reason), o.Width))
-		}
+		lines = append(lines, remarks(&s.Loads[i], o.Width)...)
 	}
 	for _, line := range standing(s) {
 		lines = append(lines, fit(line, o.Width))
 	}
 	return append(lines, wrap(o.Notice, o.Width)...)
+}
+
+// remarks say why a load is blind, or what to bear in mind with its duty.
+func remarks(l *view.Load, width int) []string {
+	switch f := &l.Figure; {
+	case !f.Measured():
+		return []string{fit(fmt.Sprintf("%s is blind: %s", l.Name, f.Reason), width)}
+	case f.Note != "":
+		return wrap(l.Name+", "+f.Note, width)
+	}
+	return nil
 }
 
 func heading(s *view.Snapshot, zone *time.Location) string {

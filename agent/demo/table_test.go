@@ -55,6 +55,8 @@ func draw(t *testing.T, s *view.Snapshot, o TableOptions) string {
 
 // The golden tables are regression guards: drawn by this code and read by hand.
 func TestTables(t *testing.T) {
+	humid := picture()
+	humid.Loads[3].Figure.Remark = loads.Remark{Latent: true, Note: "sensible part only: coil at 6.00 °C is below the dew point at 10.00 °C (101.3 kPa absolute), and what condenses is not in the duty"}
 	away := picture()
 	away.Broker = view.Broker{Fault: "dial tcp 127.0.0.1:1883:\nconnection refused", Losses: 2}
 	away.History.Fault = "no space left on device"
@@ -67,6 +69,7 @@ func TestTables(t *testing.T) {
 		"table-120":    {picture(), TableOptions{Width: 120, Notice: notice, Zone: time.FixedZone("IST", 3600)}},
 		"table-40":     {picture(), TableOptions{Width: 40, Notice: notice}},
 		"table-colour": {picture(), TableOptions{Width: 80, Notice: notice, Colour: true}},
+		"table-remark": {humid, TableOptions{Width: 80, Notice: notice}},
 		"table-away":   {away, TableOptions{Width: 100, Notice: notice}},
 	} {
 		got := draw(t, tt.s, tt.o)

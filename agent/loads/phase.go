@@ -9,7 +9,7 @@ import (
 // Remark is what to bear in mind with a duty.
 type Remark struct {
 	Latent bool   // vapour condenses, or may: the duty is the sensible part only
-	Note   string // a sentence without its full stop; empty where there is nothing to say
+	Note   string // the remark in words; empty where there is none
 }
 
 // nearFreezing, K, is how far above its freezing point a liquid is remarked upon, where
@@ -52,7 +52,7 @@ func (q *equation) phase(m *medium, x *State) (refused string, r Remark) {
 		case gas && e.T < e.lo+q.Margin:
 			return e.near(q.Margin, "the dew point", e.lo) + ": heat may be latent", Remark{}
 		case liquid && e.T < e.lo+frost && r.Note == "":
-			r.Note = e.near(frost, "freezing", e.lo) + ": heat of ice or slush is not in the duty"
+			r.Note = "near freezing: " + e.near(frost, "freezing", e.lo) + ", and ice is not in the duty"
 		}
 	}
 	return "", r
@@ -68,14 +68,14 @@ func (q *equation) condensing(m *medium, x *State, ends [2]end) Remark {
 			coldest = coil
 		}
 	}
-	const part = "not in the duty, which is the sensible part only"
+	const part = "sensible part only: "
 	switch {
 	case q.humid == nil && in.T < in.lo:
-		return Remark{true, in.below() + ": latent heat is " + part}
+		return Remark{true, part + in.below() + " and carries fog"}
 	case coldest.T < coldest.lo:
-		return Remark{true, coldest.below() + ": latent heat is " + part}
+		return Remark{true, part + coldest.below() + ", and what condenses is not in the duty"}
 	case coldest.T < coldest.lo+q.Margin:
-		return Remark{true, coldest.near(q.Margin, "the dew point", coldest.lo) + ": latent heat may be there and is " + part}
+		return Remark{true, part + coldest.near(q.Margin, "the dew point", coldest.lo) + ", and what may condense is not in the duty"}
 	}
 	return Remark{}
 }

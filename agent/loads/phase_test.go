@@ -82,9 +82,9 @@ func TestSensiblePartOfAWetGas(t *testing.T) {
 		inNote        string
 	}{
 		{name: "dry coil", in: 32, out: 12, coil: 11.5, hasCoil: true},
-		{name: "outlet near", in: 30.5, out: 10.5, coil: 40, hasCoil: true, latent: true, inNote: "outlet at 10.50 °C is within 1 K of the dew point at 10.00 °C"},
-		{name: "outlet below", in: 25, out: 5, latent: true, inNote: "outlet at 5.00 °C is below the dew point at 10.00 °C"},
-		{name: "coil below", in: 36, out: 16, coil: 6, hasCoil: true, latent: true, inNote: "coil at 6.00 °C is below the dew point at 10.00 °C"},
+		{name: "outlet near", in: 30.5, out: 10.5, coil: 40, hasCoil: true, latent: true, inNote: "sensible part only: outlet at 10.50 °C is within 1 K of the dew point at 10.00 °C"},
+		{name: "outlet below", in: 25, out: 5, latent: true, inNote: "sensible part only: outlet at 5.00 °C is below the dew point at 10.00 °C"},
+		{name: "coil below", in: 36, out: 16, coil: 6, hasCoil: true, latent: true, inNote: "sensible part only: coil at 6.00 °C is below the dew point at 10.00 °C"},
 		{name: "cold coil that the load has not", in: 36, out: 16, coil: 6},
 		{name: "heated from near saturation", in: 10.1, out: 30.1},
 	} {
@@ -97,9 +97,6 @@ func TestSensiblePartOfAWetGas(t *testing.T) {
 		}
 		near(t, tt.name, math.Abs(f.Duty), 40.8e3, 1e-6)
 		near(t, tt.name+", booked", l.Given+l.Taken, 40.8e3, 1e-6)
-		if tt.latent && !strings.Contains(f.Note, "sensible part only") {
-			t.Errorf("%s: note %q says not that the duty is the sensible part", tt.name, f.Note)
-		}
 	}
 }
 
@@ -107,7 +104,7 @@ func TestSensiblePartOfAWetGas(t *testing.T) {
 func TestFogAtTheInlet(t *testing.T) {
 	s := Stream{Fluid: newVapour(0.010), FlowKind: MassFlow, Margin: 1}
 	r, err := Work(&s, State{Flow: 2, Inlet: 273.15 + 9.9, Outlet: 273.15 + 29.9})
-	if err != nil || !r.Latent || !strings.HasPrefix(r.Note, "inlet at 9.90 °C is below") {
+	if err != nil || !r.Latent || !strings.HasPrefix(r.Note, "sensible part only: inlet at 9.90 °C is below") {
 		t.Errorf("%+v, %v; want a remark on the inlet", r.Remark, err)
 	}
 	near(t, "duty", r.Duty, 2*1020*20, 1e-6)
@@ -229,10 +226,10 @@ func TestNearFreezing(t *testing.T) {
 	}{
 		{12, 6, 5, NoFault, ""},
 		{12, 5, 20, NoFault, ""},
-		{12, 2, 20, NoFault, "outlet at 2.00 °C is within 3 K of freezing at 0.00 °C"},
-		{1, 6, 5, NoFault, "inlet at 1.00 °C is within 3 K of freezing"},
+		{12, 2, 20, NoFault, "near freezing: outlet at 2.00 °C is within 3 K of freezing at 0.00 °C"},
+		{1, 6, 5, NoFault, "near freezing: inlet at 1.00 °C is within 3 K of freezing"},
 		{12, 2, 1, NoFault, ""},
-		{12, 0.5, 1, NoFault, "outlet at 0.50 °C is within 1 K of freezing"},
+		{12, 0.5, 1, NoFault, "near freezing: outlet at 0.50 °C is within 1 K of freezing"},
 	} {
 		cfg := plant(liquid)
 		cfg.Loads[0].Stream.Margin = tt.margin

@@ -1,0 +1,33 @@
+package agent
+
+import (
+	"bytes"
+	"strings"
+	"testing"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+	"heatreeve/agent/view"
+)
+
+// The page at / says why a load is blind, and what to bear in mind with a duty for as
+// long as it is shown.
+func TestFrontPage(t *testing.T) {
+	s := &view.Snapshot{Site: "Mill", Loads: []view.Load{
+		{Name: "hall", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "TT-1 is old"}},
+		{Name: "cooler", Verdict: design.Holding, Until: clock.UnixNano(), Figure: loads.Figure{Duty: 40.8e3, Remark: loads.Remark{Latent: true, Note: "sensible part only: coil"}}},
+	}}
+	page := func(now int64) string {
+		var b bytes.Buffer
+		front(&b, s, wall(now))
+		return strings.Join(strings.Fields(b.String()), " ")
+	}
+	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 kW sensible part only: coil"} {
+		if got := page(clock.UnixNano()); !strings.Contains(got, want) {
+			t.Errorf("page %q, want %q in it", got, want)
+		}
+	}
+	if got := page(clock.UnixNano() + 1); strings.Contains(got, "sensible") || !strings.Contains(got, "cooler blind - no reading") {
+		t.Errorf("page %q after the inputs ran out", got)
+	}
+}
