@@ -44,3 +44,45 @@ func ExampleNew_constant() {
 	// table "engine oil": one row is a constant cp and density: state the range of temperature that it holds for
 	// -8524 W, <nil>
 }
+
+// A data sheet that gives polynomials in °C.
+func ExamplePolynomial() {
+	oil, err := table.Polynomial("silicone oil", "delivery sheet of an invented oil",
+		[]float64{1500, 1.7}, []float64{968, -0.9},
+		table.Options{MinT: 253.15, MaxT: 473.15, CpUncertainty: 0.015})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	s, err := oil.At(373.15, 3e5)
+	fmt.Printf("100 °C: cp %.0f J/(kg K), %.0f kg/m³, %v\n", s.Cp, s.Density, err)
+
+	_, err = table.Polynomial("silicone oil", "delivery sheet of an invented oil",
+		[]float64{1500, 1.7}, []float64{968, -9},
+		table.Options{MinT: 253.15, MaxT: 473.15})
+	fmt.Println(err)
+	// Output:
+	// 100 °C: cp 1670 J/(kg K), 878 kg/m³, <nil>
+	// polynomial "silicone oil": density is not above zero at 473.15 K, within the range 253.15 K to 473.15 K
+}
+
+// Rows with vapour pressures let the liquid boil later under pressure.
+func ExamplePoint() {
+	oil, err := table.New("plant oil", "delivery sheet of an invented oil", []table.Point{
+		{T: 400, Cp: 2000, Density: 900},
+		{T: 500, Cp: 2300, Density: 820, VapourPressure: 20e3},
+		{T: 600, Cp: 2600, Density: 730, VapourPressure: 250e3},
+	}, table.Options{})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	for _, p := range []float64{50e3, 101325, 300e3} {
+		_, boiling := oil.Span(p)
+		fmt.Printf("%.0f kPa: boils at %.0f K\n", p/1e3, boiling)
+	}
+	// Output:
+	// 50 kPa: boils at 532 K
+	// 101 kPa: boils at 560 K
+	// 300 kPa: boils at +Inf K
+}

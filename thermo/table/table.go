@@ -1,9 +1,11 @@
 // Package table holds a fluid that its user describes: cp and density against
-// temperature, from a data sheet or a measurement.
+// temperature, from a data sheet or a measurement, as rows or as polynomials.
 //
-// Between two rows cp and density are straight lines, and the enthalpy is the
-// exact integral of that cp. Nothing is extrapolated beyond the rows. A single row
-// stands for a constant cp and density, over the range that its user states.
+// Between two rows cp and density are cubics which pass through the rows with a
+// continuous slope and stay between their two values, and the enthalpy is the exact
+// integral of that cp. Two rows are a straight line. A single row stands
+// for a constant cp and density, over the range that its user states. Nothing is
+// extrapolated beyond the rows, nor beyond the stated range of a polynomial.
 //
 // A liquid or a solid is taken for incompressible: cp and density do not depend on
 // pressure, cv is set to cp, and the enthalpy keeps its pressure term, the same
@@ -14,139 +16,75 @@
 // the parenthesis taken in the middle of the range. A gas is tabulated at one
 // pressure; its density is scaled to others in proportion and
 // cp − cv = p/(ρT), as for an ideal gas.
+//
+// A liquid boils where its user says so, or by the vapour pressures of its rows.
+//
+// Against exact functions the cubics converge with the third order of the distance
+// between rows, at an extremum with the second. What published rows leave open is
+// measured in the packages oil and solid.
+//
+// Not modelled: compressibility, a phase change within the range (a peak of
+// cp that stands for latent heat is a peak of cp here), composition.
 package table
 
-import (
-	"math"
-
-	"heatreeve/thermo"
-)
+import "heatreeve/thermo"
 
 // Point is one row.
 type Point struct {
 	T       float64 // K
 	Cp      float64 // J/(kg K)
 	Density float64 // kg/m³
+	// VapourPressure of a liquid in Pa, absolute. Zero means that none is known:
+	// rows without one may come before those with, where it is too low
+	// to matter, but not after.
+	VapourPressure float64
 }
-
-const referencePressure = 101325.0 // Pa, where the pressure term is zero
 
 // segment is the stretch from one row to the next.
 type segment struct {
-	start    Point
-	enthalpy float64 // J/kg, at the start
-	cpSlope  float64 // J/(kg K²)
-	density  float64 // slope, kg/(m³ K)
+	enthalpy    float64 // J/kg, at the start
+	cp, density cubic   // in K from the start
 }
 
 type tabulated struct {
-	name, source      string
-	phase             thermo.Phase
-	segments          []segment
-	bounds            thermo.Bounds
-	freezing, boiling float64 // K; 0 and +Inf where there is none
-	pressureTerm      float64 // m³/kg; 0 for a gas
-	gasPressure       float64 // Pa, that of a gas's densities; 0 for others
-	cpU, densityU     float64
-	molarMass         float64
+	described
+	starts   []float64 // K
+	segments []segment
 }
-
-func (f *tabulated) Name() string          { return f.name }
-func (f *tabulated) Source() string        { return f.source }
-func (f *tabulated) Phase() thermo.Phase   { return f.phase }
-func (f *tabulated) Bounds() thermo.Bounds { return f.bounds }
-func (f *tabulated) MolarMass() float64    { return f.molarMass }
-
-// Uncertainty is as stated, the same at every state.
-func (f *tabulated) Uncertainty(T, p float64) (cp, density float64) { return f.cpU, f.densityU }
-
-// Span returns the freezing and the boiling point as the user stated them, at
-// whatever pressure.
-func (f *tabulated) Span(float64) (lo, hi float64) { return f.freezing, f.boiling }
 
 func (f *tabulated) At(T, p float64) (thermo.Properties, error) {
-	if err := f.bounds.Check(f.name, T, p, "range of the table"); err != nil {
+	if err := f.check(T, p); err != nil {
 		return thermo.Properties{}, err
 	}
-	if T < f.freezing || T > f.boiling {
-		return thermo.Properties{}, f.otherPhase(T)
-	}
-	s := f.find(T)
-	t := T - s.start.T
-	cp := s.start.Cp + t*s.cpSlope
-	rho := s.start.Density + t*s.density
-	h := s.enthalpy + t*(s.start.Cp+t*s.cpSlope/2) + (p-referencePressure)*f.pressureTerm
-	cv := cp
-	if f.gasPressure > 0 {
-		rho *= p / f.gasPressure
-		cv -= p / (rho * T)
-	}
-	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cv, Density: rho}, nil
-}
-
-// find returns the segment that T lies in, which is within the range.
-func (f *tabulated) find(T float64) *segment {
-	lo, hi := 0, len(f.segments)
-	for hi-lo > 1 {
-		mid := int(uint(lo+hi) / 2)
-		if f.segments[mid].start.T <= T {
-			lo = mid
-		} else {
-			hi = mid
-		}
-	}
-	return &f.segments[lo]
-}
-
-func (f *tabulated) otherPhase(T float64) error {
-	e := &thermo.RangeError{Fluid: f.name, Quantity: "temperature", Value: T, Bound: f.freezing, Below: true, Why: f.lowerEnd()}
-	if T > f.boiling {
-		e.Bound, e.Below, e.Why = f.boiling, false, f.upperEnd()
-	}
-	return e
-}
-
-func (f *tabulated) lowerEnd() string {
-	if f.phase == thermo.Gas {
-		return "dew point as stated"
-	}
-	return "freezing point as stated"
-}
-
-func (f *tabulated) upperEnd() string {
-	if f.phase == thermo.Solid {
-		return "melting point as stated"
-	}
-	return "boiling point as stated"
+	k := stretch(f.starts, T)
+	s, t := &f.segments[k], T-f.starts[k]
+	return f.properties(T, p, s.cp.at(t), s.density.at(t), s.enthalpy+s.cp.integral(t)), nil
 }
 
 // connect draws the segments through the points; a single point makes a level one.
-func connect(points []Point) []segment {
+func (f *tabulated) connect(points []Point) {
 	if len(points) == 1 {
-		return []segment{{start: points[0]}}
+		p := points[0]
+		f.starts = []float64{p.T}
+		f.segments = []segment{{cp: cubic{p.Cp}, density: cubic{p.Density}}}
+		return
 	}
-	var out []segment
+	var T, cp, rho []float64
+	for _, p := range points {
+		T, cp, rho = append(T, p.T), append(cp, p.Cp), append(rho, p.Density)
+	}
+	f.starts = T[:len(T)-1]
+	cps, rhos := interpolate(T, cp), interpolate(T, rho)
 	var h float64
-	for k, a := range points[:len(points)-1] {
-		b := points[k+1]
-		dT := b.T - a.T
-		out = append(out, segment{a, h, (b.Cp - a.Cp) / dT, (b.Density - a.Density) / dT})
-		h += dT * (a.Cp + b.Cp) / 2
+	for k := range cps {
+		f.segments = append(f.segments, segment{h, cps[k], rhos[k]})
+		h += cps[k].integral(T[k+1] - T[k])
 	}
-	return out
 }
 
-// pressureTermAt is v − T dv/dT in m³/kg at T in K.
-func (f *tabulated) pressureTermAt(T float64) float64 {
-	s := f.find(T)
-	rho := s.start.Density + (T-s.start.T)*s.density
-	return (1 + T*s.density/rho) / rho
-}
-
-// limits returns lo and hi, or no limit for a side that is 0.
-func limits(lo, hi float64) (float64, float64) {
-	if hi == 0 {
-		hi = math.Inf(1)
-	}
-	return lo, hi
+// densityAt returns the density in kg/m³ and its slope at T in K.
+func (f *tabulated) densityAt(T float64) (rho, slope float64) {
+	k := stretch(f.starts, T)
+	c, t := &f.segments[k].density, T-f.starts[k]
+	return c.at(t), c.slope(t)
 }

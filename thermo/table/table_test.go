@@ -8,11 +8,10 @@ import (
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/fluidtest"
-	"heatreeve/thermo/gas"
 )
 
 // An invented oil: round figures that can be worked by hand.
-var oil = []Point{{300, 2000, 900}, {350, 2200, 860}, {450, 2500, 780}}
+var oil = []Point{{T: 300, Cp: 2000, Density: 900}, {T: 350, Cp: 2200, Density: 860}, {T: 450, Cp: 2500, Density: 780}}
 
 func mustNew(t testing.TB, points []Point, o Options) thermo.Fluid {
 	t.Helper()
@@ -23,16 +22,24 @@ func mustNew(t testing.TB, points []Point, o Options) thermo.Fluid {
 	return f
 }
 
-// air at 1 atm as a table, from package gas.
-func air(t testing.TB) []Point {
-	t.Helper()
+// air is an ideal gas of R = 287 J/(kg K) at 1 atm, whose cp rises by a parabola.
+func air() []Point {
 	var out []Point
 	for T := 250.0; T <= 700; T += 50 {
-		p, err := gas.DryAir().At(T, 101325)
-		if err != nil {
-			t.Fatal(err)
-		}
-		out = append(out, Point{T, p.Cp, p.Density})
+		out = append(out, Point{T: T, Cp: airCp(T), Density: 101325 / (287 * T)})
+	}
+	return out
+}
+
+func airCp(T float64) float64 { return 1003 + 2e-4*(T-250)*(T-250) }
+
+// boils is the oil with the vapour pressures of an exact Clausius-Clapeyron line.
+func boils(T float64) float64 { return 1e5 * math.Exp(5000*(1/400.-1/T)) }
+
+func boilingOil() []Point {
+	out := append([]Point(nil), oil...)
+	for k := 1; k < len(out); k++ {
+		out[k].VapourPressure = boils(out[k].T)
 	}
 	return out
 }
@@ -44,30 +51,61 @@ func TestConformance(t *testing.T) {
 		"narrow":   mustNew(t, oil, Options{MinT: 320, MaxT: 440}),
 		"solid":    mustNew(t, oil, Options{Phase: thermo.Solid, Boiling: 440}),
 		"constant": mustNew(t, oil[:1], Options{MinT: 280, MaxT: 400}),
-		"gas":      mustNew(t, air(t), Options{Phase: thermo.Gas, Pressure: 101325, MolarMass: 0.029, Freezing: 260}),
+		"gas":      mustNew(t, air(), Options{Phase: thermo.Gas, Pressure: 101325, MolarMass: 0.029, Freezing: 260}),
+		"boiling":  mustNew(t, boilingOil(), Options{}),
+		"straight": mustNew(t, oil[:2], Options{}),
 	} {
 		t.Run(name, func(t *testing.T) { fluidtest.Run(t, f) })
 	}
 }
 
-// The enthalpy is the area under the broken line of cp: trapezoids, by hand.
+// By hand: the secants of cp are 4 and 3, so the slope at 350 K is (100·4 + 50·3)/150 = 11/3
+// and that at 300 K (200·4 − 50·3)/150 = 13/3, at 450 K (250·3 − 100·4)/150 = 7/3
+// J/(kg K²); a cubic between two values of slopes d, e has the area of the trapezoid
+// and (d − e) ΔT²/12 beside it.
 func TestEnthalpyIsExact(t *testing.T) {
 	f := mustNew(t, oil, Options{})
+	first := 50*2100 + (13./3-11./3)*2500/12
+	second := 100*2350 + (11./3-7./3)*10000/12
 	for _, tt := range []struct{ T1, T2, want float64 }{ // K, K, J/kg
-		{300, 350, 50 * 2100},
-		{350, 450, 100 * 2350},
-		{300, 450, 50*2100 + 100*2350},
-		{325, 400, 25*(2100+2200)/2 + 50*(2200+2350)/2},
-		{450, 300, -(50*2100 + 100*2350)},
+		{300, 350, first},
+		{350, 450, second},
+		{300, 450, first + second},
+		{450, 300, -first - second},
 	} {
 		got, err := thermo.StreamHeat(f, 1, tt.T1, 3e5, tt.T2, 3e5)
 		if err != nil || math.Abs(got-tt.want) > 1e-9*math.Abs(tt.want) {
 			t.Errorf("%g to %g K: %.12g J/kg, %v; want %g", tt.T1, tt.T2, got, err, tt.want)
 		}
 	}
+	// In the middle of the last stretch: the mean of the ends and (d − e) ΔT/8. The
+	// secants of density are both -0.8 kg/(m³ K), which is a straight line.
 	p, err := f.At(400, 3e5)
-	if err != nil || p.Cp != 2350 || p.Density != 820 {
-		t.Errorf("at 400 K: %+v, %v; want cp 2350, density 820", p, err)
+	if err != nil || math.Abs(p.Cp-(2350+(11./3-7./3)*100/8)) > 1e-9 || math.Abs(p.Density-820) > 1e-9 {
+		t.Errorf("at 400 K: %+v, %v; want cp 2366.67, density 820", p, err)
+	}
+}
+
+// Two rows are a straight line, and its enthalpy a trapezoid.
+func TestTwoRowsAreStraight(t *testing.T) {
+	f := mustNew(t, oil[:2], Options{})
+	p, err1 := f.At(330, 1e5)
+	q, err2 := thermo.StreamHeat(f, 1, 300, 1e5, 330, 1e5)
+	if err := errors.Join(err1, err2); err != nil || math.Abs(p.Cp-2120) > 1e-9 || math.Abs(p.Density-876) > 1e-9 || math.Abs(q-30*2060) > 1e-7 {
+		t.Errorf("at 330 K: %+v, heat %g J/kg, %v; want cp 2120, density 876, heat 61800", p, q, err)
+	}
+}
+
+// Every row is met.
+func TestRowsAreMet(t *testing.T) {
+	for _, points := range [][]Point{oil, air()} {
+		f := mustNew(t, points, Options{})
+		for k, row := range points {
+			got, err := f.At(row.T, 1e5)
+			if err != nil || math.Abs(got.Cp/row.Cp-1) > 1e-14 || math.Abs(got.Density/row.Density-1) > 1e-14 {
+				t.Errorf("row %d: %+v, %v; want %+v", k+1, got, err, row)
+			}
+		}
 	}
 }
 
@@ -88,22 +126,51 @@ func TestPressureTerm(t *testing.T) {
 	}
 }
 
-// A table of air agrees with the formulation it was drawn from, also at another
-// pressure; between the rows it misses what a straight line misses.
+// A table of an ideal gas agrees with the gas it was drawn from, also at another
+// pressure; cp is a parabola, which the cubics meet exactly where rows lie alike, and density
+// 101325/(287 T) at a row.
 func TestGasFollowsPressure(t *testing.T) {
-	f := mustNew(t, air(t), Options{Phase: thermo.Gas, Pressure: 101325})
-	got, err1 := f.At(400, 180e3)
-	want, err2 := gas.DryAir().At(400, 180e3)
-	if err := errors.Join(err1, err2); err != nil {
+	f := mustNew(t, air(), Options{Phase: thermo.Gas, Pressure: 101325})
+	got, err := f.At(400, 180e3)
+	if err != nil {
 		t.Fatal(err)
 	}
-	if math.Abs(got.Density/want.Density-1) > 1e-12 || math.Abs(got.Cp/want.Cp-1) > 1e-12 || math.Abs(got.Cv/want.Cv-1) > 1e-12 {
-		t.Errorf("got %+v, want %+v", got, want)
+	rho, cp := 180e3/(287*400.), airCp(400)
+	if math.Abs(got.Density/rho-1) > 1e-12 || math.Abs(got.Cp/cp-1) > 1e-12 || math.Abs(got.Cv/(cp-287)-1) > 1e-12 {
+		t.Errorf("got %+v, want density %g, cp %g, cv %g", got, rho, cp, cp-287)
 	}
-	a, err1 := thermo.StreamHeat(f, 1, 260, 1e5, 690, 1e5)
-	b, err2 := thermo.StreamHeat(gas.DryAir(), 1, 260, 1e5, 690, 1e5)
-	if err := errors.Join(err1, err2); err != nil || math.Abs(a/b-1) > 2e-4 {
-		t.Errorf("260 to 690 K: %g, want %g J/kg, %v", a, b, err)
+	q, err := thermo.StreamHeat(f, 1, 260, 1e5, 690, 1e5)
+	want := 1003*430 + 2e-4*(440*440*440-10*10*10)/3.
+	if err != nil || math.Abs(q/want-1) > 1e-12 {
+		t.Errorf("260 to 690 K: %g, %v; want %g J/kg", q, err, want)
+	}
+}
+
+// The boiling point follows an exact Clausius-Clapeyron line, on which ln p is
+// straight over 1/T.
+func TestBoilingByVapourPressure(t *testing.T) {
+	f := mustNew(t, boilingOil(), Options{})
+	if b := f.Bounds(); b.MinP != boils(350) {
+		t.Errorf("pressures from %g Pa, want from the first vapour pressure %g Pa", b.MinP, boils(350))
+	}
+	for T := 350.5; T < 450; T += 0.5 {
+		lo, hi := f.Span(boils(T))
+		if lo != 0 || math.Abs(hi-T) > 1e-9 {
+			t.Errorf("Span(%g Pa) = %g, %.12g K, want 0, %g", boils(T), lo, hi, T)
+		}
+	}
+	if _, hi := f.Span(1.0001 * boils(450)); !math.IsInf(hi, 1) {
+		t.Errorf("above the last vapour pressure: boils at %g K, want beyond the table", hi)
+	}
+	for _, p := range []float64{0, -1, math.NaN(), 1} {
+		if _, hi := f.Span(p); hi != 350 {
+			t.Errorf("Span(%g Pa) ends at %g K, want the 350 K of the first vapour pressure", p, hi)
+		}
+	}
+	_, err := f.At(420, boils(410))
+	e := new(thermo.RangeError)
+	if !errors.As(err, &e) || e.Why != "boiling point at this pressure" || math.Abs(e.Bound-410) > 1e-9 {
+		t.Errorf("420 K where it boils at 410 K: %v", err)
 	}
 }
 
@@ -113,6 +180,14 @@ func TestNewRefuses(t *testing.T) {
 		out[k] = p
 		return out
 	}
+	vapours := func(pressures ...float64) []Point {
+		out := append([]Point(nil), oil...)
+		for k, p := range pressures {
+			out[k].VapourPressure = p
+		}
+		return out
+	}
+	dip := []Point{{T: 300, Cp: 170, Density: 8}, {T: 310, Cp: 170, Density: 3}, {T: 700, Cp: 170, Density: 0.9}, {T: 710, Cp: 170, Density: 0.9}}
 	for _, tt := range []struct {
 		name, source string
 		points       []Point
@@ -122,12 +197,12 @@ func TestNewRefuses(t *testing.T) {
 		{"", "s", oil, Options{}, "it has no name"},
 		{"oil", "", oil, Options{}, "no source is given"},
 		{"oil", "s", nil, Options{}, "it has no rows"},
-		{"oil", "s", bad(1, Point{300, 2200, 860}), Options{}, "row 2: temperature 300 K does not rise above the 300 K of row 1"},
-		{"oil", "s", bad(2, Point{450, 0, 780}), Options{}, "row 3: cp of 0 J/(kg K)"},
-		{"oil", "s", bad(2, Point{450, 2500, -1}), Options{}, "row 3: density of -1 kg/m³"},
-		{"oil", "s", bad(0, Point{-40, 2000, 900}), Options{}, "row 1: temperature of -40 K"},
-		{"oil", "s", bad(1, Point{math.NaN(), 2200, 860}), Options{}, "row 2: temperature of NaN K"},
-		{"oil", "s", bad(1, Point{350, math.Inf(1), 860}), Options{}, "row 2: cp of +Inf"},
+		{"oil", "s", bad(1, Point{T: 300, Cp: 2200, Density: 860}), Options{}, "row 2: temperature 300 K does not rise above the 300 K of row 1"},
+		{"oil", "s", bad(2, Point{T: 450, Cp: 0, Density: 780}), Options{}, "row 3: cp of 0 J/(kg K)"},
+		{"oil", "s", bad(2, Point{T: 450, Cp: 2500, Density: -1}), Options{}, "row 3: density of -1 kg/m³"},
+		{"oil", "s", bad(0, Point{T: -40, Cp: 2000, Density: 900}), Options{}, "row 1: temperature of -40 K"},
+		{"oil", "s", bad(1, Point{T: math.NaN(), Cp: 2200, Density: 860}), Options{}, "row 2: temperature of NaN K"},
+		{"oil", "s", bad(1, Point{T: 350, Cp: math.Inf(1), Density: 860}), Options{}, "row 2: cp of +Inf"},
 		{"oil", "s", oil[:1], Options{}, "state the range of temperature that it holds for"},
 		{"oil", "s", oil[:1], Options{MinT: 310, MaxT: 400}, "row 1: temperature 300 K lies outside the stated range"},
 		{"oil", "s", oil, Options{MinT: 290}, "goes beyond the rows, 300 K to 450 K"},
@@ -141,10 +216,22 @@ func TestNewRefuses(t *testing.T) {
 		{"oil", "s", oil, Options{Pressure: 1e5}, "a gas must have one above zero"},
 		{"oil", "s", oil, Options{Phase: thermo.Gas}, "a gas must have one above zero"},
 		{"oil", "s", oil[:1], Options{Phase: thermo.Gas, Pressure: 1e5, MinT: 280, MaxT: 400}, "give two rows or more"},
-		{"oil", "s", []Point{{300, 200, 1}, {400, 200, 0.8}}, Options{Phase: thermo.Gas, Pressure: 1e5}, "row 1: cp 200 J/(kg K) is no more than p/(ρT) = 333.3"},
+		{"oil", "s", []Point{{T: 300, Cp: 200, Density: 1}, {T: 400, Cp: 200, Density: 0.8}}, Options{Phase: thermo.Gas, Pressure: 1e5}, "row 1: cp 200 J/(kg K) is no more than p/(ρT) = 333.3"},
 		{"oil", "s", oil, Options{CpUncertainty: -0.01}, "uncertainty of cp is -0.01"},
 		{"oil", "s", oil, Options{DensityUncertainty: 3}, "uncertainty of density is 3"},
 		{"oil", "s", oil, Options{MolarMass: 29}, "molar mass of 29 kg/mol"},
+		{"oil", "s", bad(0, Point{T: 300, Cp: 2e6, Density: 900}), Options{}, "row 1: cp of 2e+06 J/(kg K); it must be above zero and at most 1e+06"},
+		{"oil", "s", vapours(0, 10, 0), Options{}, "row 3: no vapour pressure, though row 2 has one"},
+		{"oil", "s", vapours(0, 10, 10), Options{}, "row 3: vapour pressure of 10 Pa does not rise above the 10 Pa before it"},
+		{"oil", "s", vapours(-1, 10, 20), Options{}, "row 1: vapour pressure of -1 Pa"},
+		{"oil", "s", vapours(0, 10, math.NaN()), Options{}, "row 3: vapour pressure of NaN Pa"},
+		{"oil", "s", vapours(0, 0, 10), Options{}, "one vapour pressure makes no curve"},
+		{"oil", "s", vapours(0, 10, 20), Options{Phase: thermo.Solid}, "vapour pressures are those of a liquid, the phase is solid"},
+		{"oil", "s", vapours(0, 10, 20), Options{Boiling: 400}, "boiling point of 400 K beside vapour pressures"},
+		{"oil", "s", vapours(0, 1e6, 2e6), Options{MaxP: 1e5}, "no more than the first vapour pressure"},
+		// At every row cv is above zero: ρT is 630 kg K/m³ or more, p/(ρT) 159 or less. From row 2 on the
+		// density falls by (1 − u)³, early enough for ρT to come down to 558.
+		{"oil", "s", dip, Options{Phase: thermo.Gas, Pressure: 1e5}, "row 2: on the way to row 3, at "},
 	} {
 		if f, err := New(tt.name, tt.source, tt.points, tt.opts); err == nil || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("New(%q, %q, %v, %+v) = %v, %v; want an error with %q", tt.name, tt.source, tt.points, tt.opts, f, err, tt.want)
@@ -154,7 +241,7 @@ func TestNewRefuses(t *testing.T) {
 
 // All faults come at once.
 func TestNewRefusesAllAtOnce(t *testing.T) {
-	_, err := New("oil", "", []Point{{300, -1, 900}, {290, 2000, 0}}, Options{MaxP: -1})
+	_, err := New("oil", "", []Point{{T: 300, Cp: -1, Density: 900}, {T: 290, Cp: 2000}}, Options{MaxP: -1})
 	if err == nil {
 		t.Fatal("accepted")
 	}
@@ -185,18 +272,4 @@ func TestRowsAreCopied(t *testing.T) {
 	if after, _ := f.At(340, 3e5); after != before {
 		t.Errorf("changed from %+v to %+v", before, after)
 	}
-}
-
-var sink float64
-
-func BenchmarkTable(b *testing.B) {
-	f := mustNew(b, air(b), Options{Phase: thermo.Gas, Pressure: 101325})
-	b.ReportAllocs()
-	T := 333.0
-	for b.Loop() {
-		s, _ := f.At(T, 101325)
-		sink += s.Enthalpy + s.Density + s.Cp
-		T += 1e-9 // never the same state twice
-	}
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
 }
