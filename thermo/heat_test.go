@@ -12,7 +12,11 @@ import (
 )
 
 func TestHeatRefuses(t *testing.T) {
-	w, air := water.Liquid(), gas.DryAir()
+	w := water.Liquid()
+	air, err := gas.DryAir(gas.Ideal)
+	if err != nil {
+		t.Fatal(err)
+	}
 	rigid := func(f thermo.Fluid, V, T1, p1, T2 float64) error {
 		_, _, err := thermo.RigidVesselHeat(f, V, T1, p1, T2)
 		return err

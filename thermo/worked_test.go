@@ -137,8 +137,8 @@ func workedFluids(t *testing.T) map[string]thermo.Fluid {
 	fluids := map[string]thermo.Fluid{
 		"water":                 water.Liquid(),
 		"steam":                 water.Steam(),
-		"dry air":               gas.DryAir(),
-		"flue gas":              must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030})),
+		"dry air":               must(gas.DryAir(gas.Ideal)),
+		"flue gas":              must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal)),
 		"ethylene glycol 35 %":  must(aqueous.New("ethylene glycol", 0.35, 0)),
 		"propylene glycol 40 %": must(aqueous.New("propylene glycol", 0.40, 0)),
 		"engine oil": must(table.New("engine oil", "constant cp as in the example", []table.Point{{T: 353, Cp: 2131, Density: 850}},
@@ -146,7 +146,7 @@ func workedFluids(t *testing.T) map[string]thermo.Fluid {
 		"carbon steel": must(table.New("carbon steel", "EN 1993-1-2:2005, 3.4.1.2", carbonSteel(), table.Options{Phase: thermo.Solid})),
 	}
 	for _, s := range []string{"N2", "CH4", "CO2", "H2O", "O2"} {
-		fluids[s] = must(gas.New(map[string]float64{s: 1}))
+		fluids[s] = must(gas.New(map[string]float64{s: 1}, gas.Ideal))
 	}
 	for name, points := range thermalLiquids(t) {
 		fluids[name] = must(table.New(name, "testdata/thermal-liquids.csv", points, table.Options{}))

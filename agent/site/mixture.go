@@ -14,7 +14,7 @@ func mixture(_ *reader, d declaration) thermo.Fluid {
 	if !ok {
 		return nil
 	}
-	f, err := gas.New(shares)
+	f, err := gas.New(shares, gas.Ideal)
 	if err != nil {
 		d.v.fault("%v", err)
 		return nil

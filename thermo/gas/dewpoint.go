@@ -6,39 +6,63 @@ import (
 	"heatreeve/thermo/water"
 )
 
-// vapour is a component that may condense or freeze out of a mixture within the
-// mixture's range.
+// vapour is a component that may condense, freeze out or pair within the range
+// of a mixture.
 type vapour struct {
 	formula string
 	share   float64 // mole fraction
+	point   criticalPoint
 }
 
-// condenses tells whether the component has a dew point in the table; the
-// others stay gases down to 200 K at every pressure allowed here.
-func (v vapour) condenses() bool {
-	_, known := critical[v.formula]
-	return known || v.formula == "H2O" || v.formula == "CO2"
+// vapours are the parts that fall out of the gas above 200 K at some pressure up
+// to maxP in Pa.
+func vapours(parts []component, maxP float64) []vapour {
+	var out []vapour
+	for _, c := range parts {
+		v := vapour{c.formula, c.share, critical[c.formula]}
+		if v.dewPoint(maxP) > minT {
+			out = append(out, v)
+		}
+	}
+	return out
+}
+
+// dewPointOf returns the highest dew point at p in Pa and whose it is, 0 where there is none.
+func dewPointOf(vs []vapour, p float64) (T float64, formula string) {
+	if !(p > 0) {
+		return 0, ""
+	}
+	for k := range vs {
+		if d := vs[k].dewPoint(p); d > T {
+			T, formula = d, vs[k].formula
+		}
+	}
+	return T, formula
 }
 
 // dewPoint is the temperature in K at which the component falls out of a mixture
 // at the absolute pressure p in Pa, as if its partial pressure were that of the
 // pure substance: Raoult and Dalton, without dissolved or real gas.
-func (v vapour) dewPoint(p float64) float64 {
+func (v *vapour) dewPoint(p float64) float64 {
 	part := v.share * p
 	switch v.formula {
 	case "H2O":
 		return waterDewPoint(part)
 	case "CO2":
-		return clapeyron(part, 216.592, 517950, 3142)
+		if part < snow.p {
+			return snow.temperature(part)
+		}
+	case "NO2":
+		return max(v.point.vapourTemperature(part), pairing(v.share*part))
 	}
-	return correspondingStates(part, critical[v.formula])
+	return v.point.vapourTemperature(part)
 }
 
 // waterDewPoint is exact to IAPWS-IF97 above freezing. Below, it is the frost
 // point, within 0.03 K of IAPWS R14-08 down to 200 K.
 func waterDewPoint(p float64) float64 {
-	if p < 611.657 {
-		return clapeyron(p, 273.16, 611.657, 6147)
+	if p < ice.p {
+		return ice.temperature(p)
 	}
 	T, err := water.SaturationTemperature(p)
 	if err != nil {
@@ -47,32 +71,45 @@ func waterDewPoint(p float64) float64 {
 	return T
 }
 
-// clapeyron is a sublimation line with a constant heat of sublimation:
-// ln(p/p3) = slope · (1/T3 − 1/T), from the triple point T3, p3. The slope for
-// ice is fitted to IAPWS R14-08; that for carbon dioxide runs through its
-// sublimation point at 1 atm, 194.686 K (triple point and this from memory of
-// Span and Wagner 1996).
-func clapeyron(p, T3, p3, slope float64) float64 {
-	return 1 / (1/T3 - math.Log(p/p3)/slope)
+// sublimation is a line with a constant heat of sublimation from the triple point T, p:
+// ln(p/p3) = slope · (1/T3 − 1/T).
+type sublimation struct{ T, p, slope float64 }
+
+// The slope for ice is fitted to IAPWS R14-08; that for carbon dioxide runs
+// through its sublimation point at 1 atm, 194.686 K (triple point and this from
+// memory of Span and Wagner 1996).
+var (
+	ice  = sublimation{273.16, 611.657, 6147}
+	snow = sublimation{216.592, 517950, 3142}
+)
+
+func (s sublimation) temperature(p float64) float64 {
+	return 1 / (1/s.T - math.Log(p/s.p)/s.slope)
 }
 
-// criticalPoint of a species: temperature in K, pressure in Pa, acentric factor.
-type criticalPoint struct{ T, p, omega float64 }
+// The reaction N2O4 ⇌ 2 NO2: −ΔH/R in K and ΔS/R, at 298 K and 1 bar (NIST-JANAF, from
+// memory: 57.12 kJ/mol and 175.7 J/(mol K)).
+const (
+	pairHeat    = 6870
+	pairEntropy = 21.13
+)
 
-// critical points by the reference equations of state: Lemmon, McLinden and Wagner (2009)
-// for propane, Bücker and Wagner (2006) for ethane, Gao et al. (2020) for
-// ammonia, Gao et al. (2016) for sulfur dioxide.
-var critical = map[string]criticalPoint{
-	"C2H6": {305.322, 4872200, 0.099},
-	"C3H8": {369.89, 4251200, 0.1521},
-	"NH3":  {405.56, 11363390, 0.25569},
-	"SO2":  {430.64, 7886588, 0.25613},
-}
-
-// correspondingStates draws log p over 1/T as the straight line through the critical
-// point and the point that defines the acentric factor, Tr = 0.7: within 1.5 K
-// at atmospheric pressure.
-func correspondingStates(p float64, c criticalPoint) float64 {
-	x := math.Log10(p/c.p) / (7.0 / 3 * (1 + c.omega))
-	return c.T / (1 - x)
+// pairing is the temperature in K below which the pairing of nitrogen dioxide
+// adds more than 1 % to the heat capacity of a gas with cp = 4 R. At equilibrium x² p/K
+// moles of N2O4 stand in a mole of gas, each kelvin frees ΔH/(RT²) of them, and with y =
+// ΔH/(RT)
+//
+//	x² p/K · y² = 0.01 · 4,   ln K = ΔS/R − y
+//
+// xxp is x² p in Pa.
+func pairing(xxp float64) float64 {
+	c := pairEntropy - math.Log(xxp/1e5/0.04)
+	y := 10.0
+	for range 12 {
+		y = c - 2*math.Log(y)
+		if y < 3.5 {
+			return pairHeat / 3.5 // hotter than the molecule bears
+		}
+	}
+	return pairHeat / y
 }

@@ -8,12 +8,16 @@ import (
 )
 
 func ExampleDryAir() {
-	air := gas.DryAir()
+	air, err := gas.DryAir(gas.Ideal)
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
 	cold, _ := air.At(298.15, 101325)
 	hot, _ := air.At(873.15, 101325)
 	fmt.Printf("cp %.0f and %.0f J/(kg K)\n", cold.Cp, hot.Cp)
 
-	_, err := air.At(298.15, 5e6)
+	_, err = air.At(298.15, 5e6)
 	fmt.Println(err)
 	// Output:
 	// cp 1005 and 1115 J/(kg K)
@@ -21,7 +25,7 @@ func ExampleDryAir() {
 }
 
 func ExampleNew() {
-	flue, err := gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030})
+	flue, err := gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal)
 	if err != nil {
 		fmt.Println(err)
 		return
@@ -30,10 +34,10 @@ func ExampleNew() {
 	q, err := thermo.StreamHeat(flue, 3.4439026, 523.15, 101325, 393.15, 101325)
 	fmt.Printf("%s\ndew point %.1f °C, heat %.1f kW, %v\n", flue.Name(), dew-273.15, q/1e3, err)
 
-	_, err = gas.New(map[string]float64{"methane": 1})
+	_, err = gas.New(map[string]float64{"nitrogn": 1}, gas.Ideal)
 	fmt.Println(err)
 	// Output:
-	// gas of N2 71.2 %, H2O 17.2 %, CO2 8.6 %, O2 3 %
+	// gas: {N2: 71.2 %, H2O: 17.2 %, CO2: 8.6 %, O2: 3 %}
 	// dew point 57.1 °C, heat -508.9 kW, <nil>
-	// unknown gas "methane", did you mean "CH4" (methane); known gases: N2, O2, Ar, CO2, CO, H2O, H2, He, CH4, C2H6, C3H8, NH3, SO2
+	// unknown gas "nitrogn", did you mean "N2" (nitrogen); known gases: N2, O2, Ar, CO2, CO, H2O, H2, He, CH4, C2H6, C3H8, C4H10, C5H12, C2H4, NH3, SO2, H2S, NO, NO2, N2O, HCl, Cl2, dry air
 }

@@ -3,6 +3,7 @@ package gas
 import (
 	"encoding/csv"
 	"errors"
+	"maps"
 	"math"
 	"os"
 	"strconv"
@@ -16,24 +17,45 @@ import (
 // flue gas of natural gas, as in the worked examples of package thermo.
 var flue = map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}
 
-func mustNew(t testing.TB, fractions map[string]float64) thermo.Fluid {
+func mustNew(t testing.TB, fractions map[string]float64, model Model) thermo.Fluid {
 	t.Helper()
-	f, err := New(fractions)
+	f, err := New(fractions, model)
 	if err != nil {
 		t.Fatal(err)
 	}
 	return f
 }
 
-func TestConformance(t *testing.T) {
+// mixtures are those that every model of mixtures is tried on.
+var mixtures = map[string]map[string]float64{
+	"dry air":      {"air": 1},
+	"flue gas":     flue,
+	"humid air":    {"N2": 0.775, "O2": 0.205, "H2O": 0.02},
+	"natural gas":  {"CH4": 0.89, "C2H6": 0.06, "C3H8": 0.02, "C4H10": 0.005, "C5H12": 0.001, "N2": 0.014, "CO2": 0.01},
+	"biogas":       {"CH4": 0.6, "CO2": 0.38, "N2": 0.012, "O2": 0.005, "H2S": 0.003},
+	"syngas":       {"H2": 0.48, "CO": 0.31, "CO2": 0.12, "CH4": 0.04, "N2": 0.05},
+	"loop gas":     {"H2": 0.62, "N2": 0.2, "NH3": 0.14, "CH4": 0.03, "Ar": 0.01},
+	"diving gas":   {"He": 0.45, "O2": 0.2, "N2": 0.35},
+	"burner gas":   {"SO2": 0.11, "O2": 0.09, "N2": 0.8},
+	"nitrous gas":  {"NO": 0.06, "NO2": 0.03, "N2O": 0.01, "N2": 0.8, "H2O": 0.1},
+	"wet hydrogen": {"H2": 0.6, "H2O": 0.4},
+}
+
+// everyGas is each species by itself, and the mixtures.
+func everyGas() map[string]map[string]float64 {
+	out := maps.Clone(mixtures)
 	for _, s := range Species() {
-		t.Run(s, func(t *testing.T) { fluidtest.Run(t, mustNew(t, map[string]float64{s: 1})) })
+		out[s] = map[string]float64{s: 1}
 	}
-	t.Run("dry air", func(t *testing.T) { fluidtest.Run(t, DryAir()) })
-	t.Run("flue gas", func(t *testing.T) { fluidtest.Run(t, mustNew(t, flue)) })
-	t.Run("humid air", func(t *testing.T) {
-		fluidtest.Run(t, mustNew(t, map[string]float64{"N2": 0.775, "O2": 0.205, "H2O": 0.02}))
-	})
+	return out
+}
+
+func TestConformance(t *testing.T) {
+	for name, fractions := range everyGas() {
+		for _, model := range []Model{Ideal} {
+			t.Run(name+" "+model.String(), func(t *testing.T) { fluidtest.Run(t, mustNew(t, fractions, model)) })
+		}
+	}
 }
 
 // row of a table in testdata, by column name.
@@ -72,22 +94,15 @@ func (r row) number(t *testing.T, column string) float64 {
 	return v
 }
 
-func named(t *testing.T, species string) thermo.Fluid {
-	if species == "dry-air" {
-		return DryAir()
-	}
-	return mustNew(t, map[string]float64{species: 1})
+func pure(t testing.TB, species string, model Model) thermo.Fluid {
+	t.Helper()
+	return mustNew(t, map[string]float64{species: 1}, model)
 }
 
 // ideal is cp in J/(mol K) and the enthalpy from 298.15 K in J/mol, without
 // regard to condensation: the tables hold the ideal gas far below its dew point.
-func ideal(f thermo.Fluid, T float64) (cp, h float64) {
-	m := f.(*mixture)
-	part := &m.low
-	if T > seam {
-		part = &m.high
-	}
-	cp, h = part.at(T)
+func ideal(t *testing.T, species string, T float64) (cp, h float64) {
+	cp, h = pure(t, species, Ideal).(*mixture).at(T)
 	return thermo.R * cp, thermo.R * T * h
 }
 
@@ -95,6 +110,12 @@ func ideal(f thermo.Fluid, T float64) (cp, h float64) {
 // row names its source. The tolerances are the largest deviations measured, in
 // percent, rounded up. Below them lies the rounding of the tables: 0.0005
 // J/(mol K) and 0.6 J/mol (half a joule, and the gas constant of their time).
+//
+// Where more than 1 % parts us from JANAF, we stay with the NASA coefficients. CH4: JANAF's
+// methane is of 1961 and falls behind Setzmann and Wagner (1991) too, by 0.5 % at 600 K. NO2 and N2O:
+// JANAF's tables of 1964 leave out or shorten the anharmonic terms which Gurvich, whom NASA
+// follows, carries (from memory). What is right at 1500 K is not settled by that: the
+// deviation stays in the uncertainty, see fits.
 func TestAgainstTables(t *testing.T) {
 	tolerance := map[string]struct{ cp, h float64 }{
 		"N2":      {0.005, 0.002},
@@ -108,27 +129,43 @@ func TestAgainstTables(t *testing.T) {
 		"CH4":     {4.98, 2.7}, // worst at 1500 K, against the older table of JANAF
 		"C2H6":    {0.30, 0.23},
 		"C3H8":    {0.49, 0.40},
+		"C4H10":   {0.47, 0.24},
+		"C5H12":   {0.09, 0.03},
+		"C2H4":    {0.09, 0.05},
 		"NH3":     {0.92, 0.46}, // worst at 1500 K
 		"SO2":     {0.49, 0.33}, // worst at 1500 K
+		"H2S":     {0.72, 0.46}, // worst at 1500 K
+		"NO":      {0.111, 0.074},
+		"NO2":     {2.15, 1.5},  // worst at 1500 K
+		"N2O":     {1.31, 0.61}, // worst at 1500 K
+		"HCl":     {0.127, 0.036},
+		"Cl2":     {0.164, 0.005},
 		"dry-air": {0.013, 0.007},
 	}
-	seen := map[string]int{}
+	seen, worstCp, worstH := map[string]int{}, map[string]float64{}, map[string]float64{}
 	for _, r := range rows(t, "ideal-gas.csv") {
 		s, T := r["species"], r.number(t, "T_K")
 		seen[s]++
-		cp, h := ideal(named(t, s), T)
+		cp, h := ideal(t, s, T)
 		wantCp, wantH := r.number(t, "cp_J_per_molK"), r.number(t, "h_minus_h298_J_per_mol")
-		if d := math.Abs(cp - wantCp); d > 0.0005+tolerance[s].cp/100*wantCp {
-			t.Errorf("%s %g K: cp = %.4f, want %.4f J/(mol K) (%.3f %%; %s)", s, T, cp, wantCp, 100*(cp/wantCp-1), r["source"])
+		dCp := max(0, math.Abs(cp-wantCp)-0.0005) / wantCp * 100
+		dH := max(0, math.Abs(h-wantH)-0.6) / max(1, math.Abs(wantH)) * 100
+		worstCp[s], worstH[s] = max(worstCp[s], dCp), max(worstH[s], dH)
+		if dCp > tolerance[s].cp {
+			t.Errorf("%s %g K: cp = %.4f, want %.4f J/(mol K) (%.3f %%; %s)", s, T, cp, wantCp, dCp, r["source"])
 		}
-		if d := math.Abs(h - wantH); d > 0.6+tolerance[s].h/100*math.Abs(wantH) {
-			t.Errorf("%s %g K: h = %.1f, want %.1f J/mol (%.3f %%; %s)", s, T, h, wantH, 100*(h/wantH-1), r["source"])
+		if dH > tolerance[s].h {
+			t.Errorf("%s %g K: h = %.1f, want %.1f J/mol (%.3f %%; %s)", s, T, h, wantH, dH, r["source"])
+		}
+		if d := 100 * (cp/wantCp - 1); math.Abs(d-r.number(t, "deviation_percent")) > 0.0025 {
+			t.Errorf("%s %g K: cp is off by %.4f %%, found elsewhere %s %%", s, T, d, r["deviation_percent"])
 		}
 	}
 	for _, s := range append(Species(), "dry-air") {
 		if seen[s] < 8 {
 			t.Errorf("%s: compared %d rows, want 8 or more", s, seen[s])
 		}
+		t.Logf("%-7s %2d rows: worst cp %.3f %%, h %.4f %%", s, seen[s], worstCp[s], worstH[s])
 	}
 }
 
@@ -138,7 +175,7 @@ func TestTrust(t *testing.T) {
 	compared := 0
 	for _, r := range rows(t, "real-gas.csv") {
 		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
-		f := named(t, s)
+		f := pure(t, s, Ideal)
 		got, err := f.At(T, p)
 		if p > f.Bounds().MaxP {
 			if err == nil {
@@ -167,7 +204,7 @@ func TestTrust(t *testing.T) {
 func TestTrustOfWaterVapour(t *testing.T) {
 	const T, p = 400, 1e5
 	real, err1 := water.Steam().At(T, p)
-	ideal, err2 := mustNew(t, map[string]float64{"H2O": 1}).At(T, p)
+	ideal, err2 := pure(t, "H2O", Ideal).At(T, p)
 	if err := errors.Join(err1, err2); err != nil {
 		t.Fatal(err)
 	}
@@ -181,12 +218,41 @@ func TestTrustOfWaterVapour(t *testing.T) {
 }
 
 func TestEveryGasHasItsTrust(t *testing.T) {
-	for _, s := range Species() {
-		if k := trusts[s]; !(k.cp > 0 && k.density > 0 && k.fit > 0) {
-			t.Errorf("%s: %+v", s, k)
+	for _, s := range table {
+		if k := trusts[s.formula]; !(k.cp > 0 && k.density > 0) {
+			t.Errorf("%s: %+v", s.formula, k)
+		}
+		if k := fits[s.formula]; !(k.cool > 0 && k.hot >= k.cool) {
+			t.Errorf("%s: %+v", s.formula, k)
+		}
+		if k := critical[s.formula]; !(k.T > 0 && k.p > 0) {
+			t.Errorf("%s: %+v", s.formula, k)
 		}
 	}
-	if len(trusts) != len(table) {
-		t.Errorf("%d gases, %d entries of trust", len(table), len(trusts))
+	if n := len(table); len(trusts) != n || len(fits) != n || len(critical) != n {
+		t.Errorf("%d gases, %d entries of trust, %d fits, %d critical points", n, len(trusts), len(fits), len(critical))
+	}
+}
+
+// The deviations by corresponding states, worked again. They come near those of the reference
+// equations as well, except for polar ammonia and for the smallest molecules.
+func TestTrustByCorrespondingStates(t *testing.T) {
+	near := map[string]float64{"N2": 0.15, "O2": 0.15, "Ar": 0.15, "CO2": 0.15, "CO": 0.15, "CH4": 0.15, "C2H6": 0.15, "C3H8": 0.15}
+	for _, s := range table {
+		k, c := trusts[s.formula], critical[s.formula]
+		switch s.formula {
+		case "H2O", "H2", "He", "NH3":
+			continue
+		}
+		const T = 300
+		B, second := c.virial(T)
+		cp0, _ := s.low.at(T)
+		tolerance := max(near[s.formula], 0.02)
+		if d := -T * second / (thermo.R * cp0); math.Abs(k.cp/d-1) > tolerance {
+			t.Errorf("%s: cp deviates by %g per Pa, corresponding states give %g", s.formula, k.cp, d)
+		}
+		if d := math.Abs(B) / (thermo.R * T); math.Abs(k.density-d) > tolerance*d+0.0005e-6 {
+			t.Errorf("%s: density deviates by %g per Pa, corresponding states give %g", s.formula, k.density, d)
+		}
 	}
 }

@@ -62,9 +62,9 @@ func waters() []*word {
 }
 
 func gases() []*word {
-	ws := []*word{{name: "dry air", also: []string{"air"}, make: is(gas.DryAir)}}
+	ws := []*word{{name: "dry air", also: []string{"air"}, make: func(strength) (thermo.Fluid, error) { return gas.DryAir(gas.Ideal) }}}
 	for _, formula := range gas.Species() {
-		pure := func(strength) (thermo.Fluid, error) { return gas.New(map[string]float64{formula: 1}) }
+		pure := func(strength) (thermo.Fluid, error) { return gas.New(map[string]float64{formula: 1}, gas.Ideal) }
 		w := &word{name: formula, make: pure}
 		if f, err := pure(strength{}); err == nil && fold(f.Name()) != fold(formula) {
 			w.name, w.also = f.Name(), []string{formula}
