@@ -73,6 +73,6 @@ func ExampleParseFluid() {
 	_, err = ParseFluid("propylene glycol 32")
 	fmt.Println(err)
 	// Output:
-	// gas of N2 79 %, O2 21 %
+	// gas: {N2: 79 %, O2: 21 %}
 	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 10 %"
 }
