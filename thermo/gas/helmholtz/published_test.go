@@ -1,0 +1,104 @@
+package helmholtz
+
+import (
+	"encoding/csv"
+	"math"
+	"os"
+	"strconv"
+	"strings"
+	"testing"
+)
+
+// printed is a figure of a table together with half of its last digit.
+type printed struct{ value, half float64 }
+
+func parse(t *testing.T, s string) printed {
+	t.Helper()
+	v, err := strconv.ParseFloat(s, 64)
+	if err != nil {
+		t.Fatalf("%q: %v", s, err)
+	}
+	// six significant digits, of which %g drops the zeros at the end
+	half := 0.5 * math.Pow(10, math.Floor(math.Log10(math.Abs(v)))-5)
+	return printed{v, half}
+}
+
+// a hundredth over half of the last digit, for a figure that lies on the edge
+func (p printed) agrees(got float64) bool { return math.Abs(got-p.value) <= 1.01*p.half }
+
+func of(t *testing.T, formula string) *fluid {
+	t.Helper()
+	if formula == "dry-air" {
+		return Air().(*fluid)
+	}
+	f, ok := New(formula)
+	if !ok {
+		t.Fatalf("New(%q): not known", formula)
+	}
+	return f.(*fluid)
+}
+
+// TestAgainstAnotherEvaluation holds every figure to the digits printed.
+func TestAgainstAnotherEvaluation(t *testing.T) {
+	file, err := os.Open("testdata/real-gas.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer file.Close()
+	r := csv.NewReader(file)
+	r.Comment = '#'
+	rows, err := r.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var compared int
+	var worst float64
+	for _, row := range rows[1:] {
+		f := of(t, row[0])
+		T, p := parse(t, row[1]).value, parse(t, row[2]).value
+		got, err := f.At(T, p)
+		if err != nil {
+			t.Errorf("%s: %v", strings.Join(row, ","), err)
+			continue
+		}
+		z := parse(t, row[8])
+		z.half = 0.5e-5
+		cp0, h0 := ideal(f, T)
+		for _, c := range []struct {
+			name string
+			got  float64
+			want printed
+		}{
+			{"density", got.Density, parse(t, row[3])},
+			{"cp", got.Cp, parse(t, row[4])},
+			{"cv", got.Cv, parse(t, row[5])},
+			{"cp of the ideal gas", cp0, parse(t, row[6])},
+			{"h less that of the ideal gas", got.Enthalpy - h0, parse(t, row[7])},
+			{"compressibility", p / (got.Density * f.r * T), z},
+		} {
+			compared++
+			worst = max(worst, math.Abs(c.got/c.want.value-1))
+			if !c.want.agrees(c.got) {
+				t.Errorf("%s %g K, %g Pa: %s = %.9g, want %.9g (%s)", f.name, T, p, c.name, c.got, c.want.value, row[9])
+			}
+		}
+	}
+	if compared != 6*162 {
+		t.Errorf("compared %d figures, want six of each of 162 states", compared)
+	}
+	t.Logf("%d figures, largest relative deviation %.1e", compared, worst)
+}
+
+// ideal returns cp and h of the ideal gas.
+func ideal(f *fluid, T float64) (cp, h float64) {
+	u, cv := f.ideal.at(f.reducingT / T)
+	return f.r * (cv + 1), f.r*T*(u+1) + f.offset
+}
+
+func TestZeroOfEnthalpy(t *testing.T) {
+	for _, f := range all(t) {
+		if _, h := ideal(f.(*fluid), zero); h != 0 {
+			t.Errorf("%s: the ideal gas has %g J/kg at %g K, want 0", f.Name(), h, zero)
+		}
+	}
+}
