@@ -23,7 +23,7 @@ func ExampleNew() {
 	_, err = glycol.At(253.15, 3e5)
 	fmt.Println(err)
 	// Output:
-	// propylene glycol 32 % freezes at -14.1 °C; cp ± 0.54 %, density ± 0.37 %
+	// propylene glycol 32 % freezes at -13.3 °C; cp ± 0.57 %, density ± 0.31 %
 	// 12 to 7 °C at 5 kg/s: -95.0 kW, <nil>
-	// propylene glycol 32 %: temperature -20 °C is below -14.1289 °C (freezing point)
+	// propylene glycol 32 %: temperature -20 °C is below -13.3144 °C (freezing point, were the mixture weaker by twice the uncertainty of its strength)
 }

@@ -2,13 +2,17 @@ package aqueous
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/unit/near"
 )
 
-// Solutes returns the names that New knows.
+var solutes = slices.Concat(liquids, salts)
+
+// Solutes returns the names of the solutes. [New] knows each in any case, with
+// spaces, hyphens or without, and by its formula or a common short name too.
 func Solutes() []string {
 	var out []string
 	for _, s := range solutes {
@@ -22,32 +26,69 @@ func Solutes() []string {
 const maxFractionUncertainty = 0.1
 
 // New returns the mixture of water and a mass fraction of solute (kg per kg of
-// mixture, 0 to 0.6) that is known with the given standard uncertainty, also as a mass
-// fraction and at most 0.1. The error names an unknown solute and those like
-// it, or the figure that is out of range.
+// mixture, from 0 to the solute's largest) that is known with the given standard
+// uncertainty, also as a mass fraction and at most 0.1. Salts count without
+// their water of crystallization. The error names an unknown solute and those
+// like it, or the figure that is out of range.
 func New(solute string, massFraction, massFractionUncertainty float64) (thermo.Fluid, error) {
 	s, err := lookup(solute)
 	if err != nil {
 		return nil, err
 	}
-	if !(massFraction >= 0 && massFraction <= maxFraction) {
-		return nil, fmt.Errorf("%s of mass fraction %g; the polynomials hold from 0 to %g", solute, massFraction, maxFraction)
+	if !(massFraction >= 0 && massFraction <= s.max) {
+		return nil, fmt.Errorf("%s of mass fraction %g; %s", s.name, massFraction, s.limit())
 	}
 	if u := massFractionUncertainty; !(u >= 0 && u <= maxFractionUncertainty) {
-		return nil, fmt.Errorf("%s: uncertainty of the mass fraction is %g; it lies from 0 to %g", solute, u, maxFractionUncertainty)
+		return nil, fmt.Errorf("%s: uncertainty of the mass fraction is %g; it lies from 0 to %g", s.name, u, maxFractionUncertainty)
 	}
-	return s.mix(massFraction, massFractionUncertainty), nil
+	name := fmt.Sprintf("%s %.4g %%", s.name, 100*massFraction)
+	return s.mix(name, massFraction, massFractionUncertainty), nil
+}
+
+func (s *solute) limit() string {
+	if s.eutectic {
+		return fmt.Sprintf("the polynomials hold from 0 to the eutectic, %g", s.max)
+	}
+	return fmt.Sprintf("the polynomials hold from 0 to %g", s.max)
+}
+
+// mix works out the polynomials at mass fraction x, known to u.
+func (s *solute) mix(name string, x, u float64) *mixture {
+	d := x - s.baseX
+	m := &mixture{
+		name: name, base: s.baseT, freezes: "freezing point", boiling: s.boils(x), deviations: s.deviation, u: u,
+		density: at(&s.density, d), densitySlope: slopeAt(&s.density, d),
+		cp: at(&s.cp, d), slope: slopeAt(&s.cp, d),
+	}
+	if u > 0 {
+		m.freezes = "freezing point, were the mixture weaker by twice the uncertainty of its strength"
+	}
+	m.bounds = thermo.Bounds{MinT: s.freezesAt(max(0, x-2*u)), MaxT: s.maxT, MinP: m.boiling.minPressure(), MaxP: maxPressure}
+	m.boilsBelow = boilsBelow(m.boiling, s.maxT)
+	rho, slope := m.density[0], m.density[1]
+	m.pressureTerm = (1 + s.baseT*slope/rho) / rho // v − T dv/dT, with dv = −dρ/ρ²
+	return m
 }
 
 func lookup(name string) (*solute, error) {
+	var known []string
 	for k := range solutes {
-		if solutes[k].name == name {
-			return &solutes[k], nil
+		s := &solutes[k]
+		for _, n := range append([]string{s.name}, s.aliases...) {
+			if plain(n) == plain(name) {
+				return s, nil
+			}
+			known = append(known, n)
 		}
 	}
 	hint := ""
-	if guess := near.Names(name, Solutes()); len(guess) > 0 {
+	if guess := near.Names(name, known); len(guess) > 0 {
 		hint = fmt.Sprintf(", did you mean %q", guess[0])
 	}
 	return nil, fmt.Errorf("unknown solute %q%s; known solutes: %s", name, hint, strings.Join(Solutes(), ", "))
+}
+
+// plain is a name without regard to case, spaces, hyphens and underscores.
+func plain(name string) string {
+	return strings.ToLower(strings.NewReplacer(" ", "", "-", "", "_", "").Replace(name))
 }
