@@ -55,14 +55,11 @@ func (c criticalPoint) virial(T float64) (B, second float64) {
 // vapourTemperature in K at the pressure p in Pa draws log p over 1/T as the straight line
 // through the critical point and the point that defines the acentric factor, Tr =
 // 0.7: within 1.5 K at atmospheric pressure. Above the critical pressure it runs on,
-// between the gas and the dense fluid.
+// between the gas and the dense fluid, as far as twice the critical temperature.
 func (c criticalPoint) vapourTemperature(p float64) float64 {
 	x := math.Log10(p/c.p) / (7.0 / 3 * (1 + c.omega))
-	if x >= 1 {
-		return math.Inf(1)
-	}
-	return c.T / (1 - x)
+	return c.T / (1 - min(x, 0.5))
 }
 
 // covolume b of Peng and Robinson in m³/mol.
-func (c criticalPoint) covolume() float64 { return 0.07780 * thermo.R * c.T / c.p }
+func (c criticalPoint) covolume() float64 { return omegaB * thermo.R * c.T / c.p }

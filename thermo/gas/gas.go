@@ -1,4 +1,5 @@
-// Package gas holds gases and their mixtures: by the NASA-9 polynomials as ideal gases.
+// Package gas holds gases and their mixtures: by the NASA-9 polynomials as ideal gases, and with
+// the equation of state of Peng and Robinson under pressure.
 //
 // The enthalpy and cp of an ideal gas depend on temperature alone, its density is
 // pM/(RT) and cp − cv = R/M. What that leaves out grows with

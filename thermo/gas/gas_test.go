@@ -52,7 +52,7 @@ func everyGas() map[string]map[string]float64 {
 
 func TestConformance(t *testing.T) {
 	for name, fractions := range everyGas() {
-		for _, model := range []Model{Ideal} {
+		for _, model := range []Model{Ideal, PengRobinson} {
 			t.Run(name+" "+model.String(), func(t *testing.T) { fluidtest.Run(t, mustNew(t, fractions, model)) })
 		}
 	}
@@ -193,6 +193,12 @@ func TestTrust(t *testing.T) {
 		}
 		if d := got.Density/r.number(t, "rho_kg_per_m3") - 1; math.Abs(d) > rhoLimit {
 			t.Errorf("%s %g K, %g Pa: density is off by %.2f %% (%s)", s, T, p, 100*d, r["eos"])
+		}
+		uCp, uDensity := f.Uncertainty(T, p)
+		dCp, dDensity := math.Abs(got.Cp/r.number(t, "cp_J_per_kgK")-1), math.Abs(got.Density/r.number(t, "rho_kg_per_m3")-1)
+		if dCp > 2*uCp || dDensity > 2*uDensity {
+			t.Errorf("%s %g K, %g Pa: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %% (%s)",
+				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r["eos"])
 		}
 	}
 	if compared < 40 {

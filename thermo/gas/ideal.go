@@ -100,7 +100,7 @@ func (m *mixture) MolarMass() float64    { return m.molarMass }
 // at the pressure. An uncertain composition is not in it.
 func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
 	cp, density = m.trust.at(T, p, m.covolume)
-	return math.Hypot(cp, m.fit.at(T)), density
+	return math.Hypot(cp, m.fit.at(T)), math.Hypot(density, massU)
 }
 
 // Span returns the temperature at which the first component condenses,

@@ -54,6 +54,8 @@ func (c composition) by(model Model) (thermo.Fluid, error) {
 	switch model {
 	case Ideal:
 		return newMixture(c), nil
+	case PengRobinson, Best:
+		return newCubic(c), nil
 	}
 	return nil, fmt.Errorf("unknown model %v of a gas; models: %s", model, strings.Join(Models(), ", "))
 }

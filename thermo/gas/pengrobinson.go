@@ -1,0 +1,135 @@
+package gas
+
+import (
+	"math"
+
+	"heatreeve/thermo"
+)
+
+const pengRobinson = "Peng and Robinson, Ind. Eng. Chem. Fundam. 15 (1976) 59, kij = 0, with "
+
+// cubic is a gas by Peng and Robinson, with the polynomials for its ideal part.
+type cubic struct {
+	name         string
+	ideal        polynomials
+	one          fluid1
+	fit          fit
+	polar        float64 // mole fraction of polar gases
+	pairs        float64 // what unlike molecules may add to the error of the residual, as a fraction of it
+	vapours      []vapour
+	lastDewPoint float64 // K, the highest dew point at any allowed pressure
+}
+
+// polar gases are those which hold together by more than size and attraction.
+var polar = map[string]bool{"H2O": true, "NH3": true, "SO2": true, "HCl": true, "NO": true, "NO2": true}
+
+var cubicBounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: 0, MaxP: 10e6}
+
+func newCubic(c composition) *cubic {
+	m := &cubic{name: c.name, ideal: mix(c.parts), one: oneFluid(c.parts), fit: fitOf(c.parts)}
+	same := 0.0
+	for _, p := range c.parts {
+		same += p.share * p.share
+		if polar[p.formula] {
+			m.polar += p.share
+		}
+	}
+	m.pairs = 0.1*(1-same) + 1.6*m.polar*(1-m.polar)
+	m.vapours = vapours(c.parts, cubicBounds.MaxP)
+	m.lastDewPoint, _ = dewPointOf(m.vapours, cubicBounds.MaxP)
+	return m
+}
+
+func (m *cubic) Name() string          { return m.name }
+func (m *cubic) Source() string        { return pengRobinson + nasa }
+func (m *cubic) Phase() thermo.Phase   { return thermo.Gas }
+func (m *cubic) Bounds() thermo.Bounds { return cubicBounds }
+func (m *cubic) MolarMass() float64    { return m.ideal.molarMass }
+
+// warm is the reduced temperature from which every pressure up to 100 bar is let pass.
+const warm = 1.3
+
+// coldest is the temperature in K below which the equation is not trusted at p in Pa: 1.3
+// times the critical temperature T of the one fluid, and less at lower pressures,
+// where p/pc = c·(T/Tc)^7.5. c is 0.25 for gases without a dipole, 0.1 for polar ones:
+// cp is then off by 3 % at the most. Up to 120 kPa all is let pass, as for the ideal gas.
+func (m *cubic) coldest(p float64) float64 {
+	if p <= leastMaxP {
+		return 0
+	}
+	t := math.Pow(p/m.one.p/(0.25-0.15*m.polar), 1/7.5)
+	return m.one.T * min(t, warm)
+}
+
+// Span returns, for the lower side, the higher of the temperature at which the first component
+// condenses, freezes out or pairs at p, and the one below which the equation is not
+// trusted; and +Inf.
+func (m *cubic) Span(p float64) (lo, hi float64) {
+	lo, _ = m.limit(p)
+	return lo, math.Inf(1)
+}
+
+func (m *cubic) limit(p float64) (T float64, formula string) {
+	T, formula = dewPointOf(m.vapours, p)
+	if c := m.coldest(p); c > T {
+		return c, ""
+	}
+	return T, formula
+}
+
+func (m *cubic) At(T, p float64) (thermo.Properties, error) {
+	if err := m.check(T, p); err != nil {
+		return thermo.Properties{}, err
+	}
+	cp, h := m.ideal.at(T)
+	res := m.one.at(T, p)
+	r, rt := m.ideal.r, m.ideal.r*T
+	return thermo.Properties{
+		Enthalpy:       rt * (h + res.h),
+		InternalEnergy: rt * (h + res.h - res.z),
+		Cp:             r * (cp + res.cp),
+		Cv:             r * (cp - 1 + res.cv),
+		Density:        p / (res.z * rt),
+	}, nil
+}
+
+func (m *cubic) check(T, p float64) error {
+	if err := cubicBounds.Check(m.name, T, p, "range of Peng-Robinson"); err != nil {
+		return err
+	}
+	if T >= m.lastDewPoint && T >= warm*m.one.T {
+		return nil
+	}
+	lo, formula := m.limit(p)
+	switch {
+	case T >= lo:
+		return nil
+	case formula == "":
+		return tooCold(m.name, T, lo, "too near to condensing for Peng-Robinson at this pressure")
+	}
+	return tooCold(m.name, T, lo, dewOf(formula))
+}
+
+// massU is the relative standard uncertainty of a molar mass, and so of the density of an ideal gas.
+const massU = 3e-5
+
+// Uncertainty takes a fraction of the residual of cp, and of the covolume's part in the density,
+// that holds all deviations from reference equations in
+// testdata/real-gas.csv, and of water from IAPWS-IF97: 0.2 (polar gases 0.25) of the residual and 3 % of
+// B = bp/(RT) in cp, 0.42 B in density, all growing below 1.3 times the critical
+// temperature, over √3. For mixtures comes what kij = 0 may be off by (an estimate, no source): up
+// to 0.1 of both residuals between plain gases, up to 0.4 between plain and polar ones.
+// The ideal part is joined. An uncertain composition is not in it.
+func (m *cubic) Uncertainty(T, p float64) (cp, density float64) {
+	ideal, _ := m.ideal.at(T)
+	res := m.one.at(T, p)
+	B := m.one.b * p / (thermo.R * T)
+	share, volume := 0.2+0.05*m.polar, 0.42
+	if cool := warm * m.one.T / T; cool > 1 {
+		share *= math.Pow(cool, 2.6+2.4*m.polar)
+		volume *= math.Pow(cool, 1.3+3.2*m.polar)
+	}
+	cp = (share+m.pairs)*math.Abs(res.cp)/(ideal+res.cp) + 0.03*B
+	density = volume*B + m.pairs*math.Abs(1-1/res.z)
+	return math.Hypot(cp/math.Sqrt(3), m.fit.at(T)), math.Hypot(density/math.Sqrt(3), massU)
+}
