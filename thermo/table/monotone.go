@@ -35,6 +35,18 @@ func interpolate(x, y []float64) []cubic {
 	return out
 }
 
+// parabolas returns one parabola a stretch, through the values y at its ends and
+// with the area by which the integrals at the ends differ.
+func parabolas(x, y, integrals []float64) []cubic {
+	out := make([]cubic, len(x)-1)
+	for k := range out {
+		h := x[k+1] - x[k]
+		bulge := (integrals[k+1]-integrals[k])/h - (y[k]+y[k+1])/2 // mean of 6 u (1 − u), u from 0 to 1
+		out[k] = cubic{y[k], (y[k+1] - y[k] + 6*bulge) / h, -6 * bulge / (h * h)}
+	}
+	return out
+}
+
 func slopes(x, y []float64) []float64 {
 	n := len(x)
 	secant := func(k int) float64 { return (y[k+1] - y[k]) / (x[k+1] - x[k]) }

@@ -17,10 +17,10 @@ func New(name, source string, points []Point, opts Options) (thermo.Fluid, error
 	if n := len(points); n > 1 {
 		opts.withRange(points[0].T, points[n-1].T)
 	}
-	faults := slices.Concat(checkNames(name, source), checkPoints(points), opts.check(), opts.checkRange(points), opts.checkVapour(points))
+	faults := slices.Concat(checkNames(name, source), checkPoints(points), opts.check(), opts.checkRange(points), opts.checkVapour(points), opts.checkEnthalpies(points))
 	if len(faults) == 0 {
 		f := &tabulated{described: opts.describe(name, source, "range of the table")}
-		f.connect(points)
+		f.connect(points, opts.Enthalpies)
 		f.setBoiling(newVapour(points))
 		middle := (opts.MinT + opts.MaxT) / 2
 		rho, slope := f.densityAt(middle)
@@ -63,6 +63,26 @@ func checkPoints(points []Point) (faults []error) {
 		}
 		if k > 0 && !(p.T > points[k-1].T) {
 			faults = append(faults, fmt.Errorf("row %d: temperature %g K does not rise above the %g K of row %d", k+1, p.T, points[k-1].T, k))
+		}
+	}
+	return faults
+}
+
+// checkEnthalpies makes sure that cp stays above zero between rows whose enthalpies are
+// given.
+func (o Options) checkEnthalpies(points []Point) (faults []error) {
+	h := o.Enthalpies
+	switch {
+	case h == nil:
+		return nil
+	case len(h) != len(points) || len(h) < 2:
+		return []error{fmt.Errorf("%d enthalpies beside %d rows; want one a row, and two rows or more", len(h), len(points))}
+	}
+	for k := 1; k < len(points); k++ {
+		a, b := points[k-1], points[k]
+		cp := parabolas([]float64{a.T, b.T}, []float64{a.Cp, b.Cp}, h[k-1:k+1])[0]
+		if _, ok := above(cp[:], 0, b.T-a.T); !ok || !(h[k]-h[k-1] <= largest*(b.T-a.T)) {
+			faults = append(faults, fmt.Errorf("row %d: enthalpies of %g and %g J/kg are not those of a cp of %g and %g J/(kg K) at %g and %g K", k+1, h[k-1], h[k], a.Cp, b.Cp, a.T, b.T))
 		}
 	}
 	return faults

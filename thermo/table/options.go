@@ -33,6 +33,10 @@ type Options struct {
 	// as fractions up to 0.2. Zero means that none is stated, and 1 % is taken
 	// (common practice, no source).
 	CpUncertainty, DensityUncertainty float64
+	// Enthalpies in J/kg of the rows of a table, one a row, from any zero. Where they
+	// are given they are met, together with the cp of the rows: between two rows cp is the
+	// parabola that has both, which joins the next without a step, but with a kink.
+	Enthalpies []float64
 	// MolarMass in kg/mol; zero means none.
 	MolarMass float64
 }

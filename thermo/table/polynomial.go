@@ -83,6 +83,9 @@ func checkCoefficients(what string, c []float64) []error {
 }
 
 func (o Options) checkPolynomialRange() []error {
+	if o.Enthalpies != nil {
+		return []error{errors.New("enthalpies are those of the rows of a table; a polynomial has none")}
+	}
 	if o.MinT == 0 || o.MaxT == 0 {
 		return []error{errors.New("a polynomial does not say how far it holds: state the range of temperature")}
 	}

@@ -100,6 +100,7 @@ func TestPolynomialRefuses(t *testing.T) {
 		{"oil", "s", liquidCp, liquidDensity, Options{MinT: math.NaN(), MaxT: 300}, "both must be finite"},
 		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 300, MaxT: 400, Boiling: 290}, "leave nothing"},
 		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 300, MaxT: 400, MaxP: -1}, "highest pressure of -1 Pa"},
+		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 300, MaxT: 400, Enthalpies: []float64{1}}, "a polynomial has none"},
 		{"oil", "s", []float64{100, -1}, liquidDensity, liquidRange, "cp is not above zero at "},
 		{"oil", "s", liquidCp, []float64{100, -1}, liquidRange, "density is not above zero at "},
 		{"oil", "s", []float64{2e6}, liquidDensity, liquidRange, "cp is above 1e+06 J/(kg K) at "},

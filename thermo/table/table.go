@@ -3,7 +3,8 @@
 //
 // Between two rows cp and density are cubics which pass through the rows with a
 // continuous slope and stay between their two values, and the enthalpy is the exact
-// integral of that cp. Two rows are a straight line. A single row stands
+// integral of that cp. (Where the enthalpies of the rows are given as well, cp is a
+// parabola between them.) Two rows are a straight line. A single row stands
 // for a constant cp and density, over the range that its user states. Nothing is
 // extrapolated beyond the rows, nor beyond the stated range of a polynomial.
 //
@@ -61,8 +62,9 @@ func (f *tabulated) At(T, p float64) (thermo.Properties, error) {
 	return f.properties(T, p, s.cp.at(t), s.density.at(t), s.enthalpy+s.cp.integral(t)), nil
 }
 
-// connect draws the segments through the points; a single point makes a level one.
-func (f *tabulated) connect(points []Point) {
+// connect draws the segments through the points, and enthalpies where they are not nil; a
+// single point makes a level one.
+func (f *tabulated) connect(points []Point, enthalpies []float64) {
 	if len(points) == 1 {
 		p := points[0]
 		f.starts = []float64{p.T}
@@ -75,6 +77,9 @@ func (f *tabulated) connect(points []Point) {
 	}
 	f.starts = T[:len(T)-1]
 	cps, rhos := interpolate(T, cp), interpolate(T, rho)
+	if enthalpies != nil {
+		cps = parabolas(T, cp, enthalpies)
+	}
 	var h float64
 	for k := range cps {
 		f.segments = append(f.segments, segment{h, cps[k], rhos[k]})

@@ -54,6 +54,7 @@ func TestConformance(t *testing.T) {
 		"gas":      mustNew(t, air(), Options{Phase: thermo.Gas, Pressure: 101325, MolarMass: 0.029, Freezing: 260}),
 		"boiling":  mustNew(t, boilingOil(), Options{}),
 		"straight": mustNew(t, oil[:2], Options{}),
+		"enthalpy": mustNew(t, oil, Options{Enthalpies: []float64{-1e4, 96e3, 330e3}}),
 	} {
 		t.Run(name, func(t *testing.T) { fluidtest.Run(t, f) })
 	}
@@ -83,6 +84,23 @@ func TestEnthalpyIsExact(t *testing.T) {
 	p, err := f.At(400, 3e5)
 	if err != nil || math.Abs(p.Cp-(2350+(11./3-7./3)*100/8)) > 1e-9 || math.Abs(p.Density-820) > 1e-9 {
 		t.Errorf("at 400 K: %+v, %v; want cp 2366.67, density 820", p, err)
+	}
+}
+
+// Given enthalpies are met, and cp with them. By hand half-way from 300 to 350 K: the mean
+// cp is 106e3/50 = 2120, 20 above that of the ends, so the parabola is 1.5 · 20 above 2100.
+func TestEnthalpiesAreMet(t *testing.T) {
+	want := []float64{-1e4, 96e3, 330e3}
+	f := mustNew(t, oil, Options{Enthalpies: want})
+	for k, row := range oil {
+		got, err1 := f.At(row.T, 1e5)
+		q, err2 := thermo.StreamHeat(f, 1, oil[0].T, 1e5, row.T, 1e5)
+		if err := errors.Join(err1, err2); err != nil || math.Abs(got.Cp-row.Cp) > 1e-9 || math.Abs(q-(want[k]-want[0])) > 1e-7 {
+			t.Errorf("row %d: cp %g, heat %g, %v; want %g, %g", k+1, got.Cp, q, err, row.Cp, want[k]-want[0])
+		}
+	}
+	if got, err := f.At(325, 1e5); err != nil || math.Abs(got.Cp-2130) > 1e-9 {
+		t.Errorf("at 325 K: %+v, %v; want cp 2130", got, err)
 	}
 }
 
@@ -229,6 +247,11 @@ func TestNewRefuses(t *testing.T) {
 		{"oil", "s", vapours(0, 10, 20), Options{Phase: thermo.Solid}, "vapour pressures are those of a liquid, the phase is solid"},
 		{"oil", "s", vapours(0, 10, 20), Options{Boiling: 400}, "boiling point of 400 K beside vapour pressures"},
 		{"oil", "s", vapours(0, 1e6, 2e6), Options{MaxP: 1e5}, "no more than the first vapour pressure"},
+		{"oil", "s", oil, Options{Enthalpies: []float64{0, 1e5}}, "2 enthalpies beside 3 rows"},
+		{"oil", "s", oil[:1], Options{MinT: 280, MaxT: 320, Enthalpies: []float64{0}}, "1 enthalpies beside 1 rows"},
+		{"oil", "s", oil, Options{Enthalpies: []float64{0, 2e4, 3e5}}, "row 2: enthalpies of 0 and 20000 J/kg are not those of a cp of 2000 and 2200 J/(kg K) at 300 and 350 K"},
+		{"oil", "s", oil, Options{Enthalpies: []float64{0, 1e5, math.NaN()}}, "row 3: enthalpies of 100000 and NaN J/kg"},
+		{"oil", "s", oil, Options{Enthalpies: []float64{0, math.Inf(1), 1e9}}, "row 2: enthalpies of 0 and +Inf J/kg"},
 		// At every row cv is above zero: ρT is 630 kg K/m³ or more, p/(ρT) 159 or less. From row 2 on the
 		// density falls by (1 − u)³, early enough for ρT to come down to 558.
 		{"oil", "s", dip, Options{Phase: thermo.Gas, Pressure: 1e5}, "row 2: on the way to row 3, at "},
