@@ -1,0 +1,71 @@
+// Package roster finds an entry of a short list by the name that a person writes: in
+// any case, with spaces, hyphens or neither.
+package roster
+
+import (
+	"fmt"
+	"strings"
+	"unicode"
+
+	"heatreeve/thermo/unit/near"
+)
+
+// longest name that is quoted back in full, in letters.
+const longest = 60
+
+// Find returns the one of names that name stands for. also leads from other
+// names to one of names. what says in the error of an unknown name what was sought, such as
+// "solid"; the error tells the near names and all of them.
+func Find(what, name string, names []string, also map[string]string) (string, error) {
+	sought := fold(name)
+	known := make(map[string]string, len(names)+len(also))
+	for other, n := range also {
+		known[fold(other)] = n
+	}
+	for _, n := range names {
+		known[fold(n)] = n
+	}
+	if n, ok := known[sought]; ok {
+		return n, nil
+	}
+	return "", fmt.Errorf("unknown %s %q%s; known: %s", what, clip(name), hint(sought, known, names), strings.Join(names, ", "))
+}
+
+// hint names those of names that are near the folded name, in their own order.
+func hint(sought string, known map[string]string, names []string) string {
+	var folded []string
+	for f := range known {
+		folded = append(folded, f)
+	}
+	meant := make(map[string]bool)
+	for _, f := range near.Names(sought, folded) {
+		meant[known[f]] = true
+	}
+	var guess []string
+	for _, n := range names {
+		if meant[n] {
+			guess = append(guess, fmt.Sprintf("%q", n))
+		}
+	}
+	if len(guess) == 0 {
+		return ""
+	}
+	return ", did you mean " + strings.Join(guess, " or ")
+}
+
+// fold keeps what tells two names apart.
+func fold(name string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsSpace(r) || unicode.Is(unicode.Pd, r) || r == '_' {
+			return -1
+		}
+		return unicode.ToLower(r)
+	}, name)
+}
+
+func clip(s string) string {
+	if rs := []rune(s); len(rs) > longest {
+		return string(rs[:longest]) + "..."
+	}
+	return s
+}
