@@ -15,7 +15,7 @@
 // magnesium chloride 0.90 and 0.28, lithium chloride 2.1 and 0.17, potassium
 // carbonate 0.17 (5 % by mass only) and 0.71, potassium acetate and formate 0.38
 // and 0.29 in density, ethanol 2.5 and 0.52 (Laliberté); ammonia 2.5 and 0.26
-// (IAPWS G4-01). Methanol and glycerol have only Melinder's own tables to be held
+// from 5 °C to 25 °C, 4.6 and 0.36 from -13 °C to 30 °C (IAPWS G4-01). Methanol and glycerol have only Melinder's own tables to be held
 // against, 2.3 and 0.4 in cp; ethanol of 60 % at -10 °C is 3.4 off them. With
 // nothing dissolved the polynomials differ from IAPWS-IF97 by at most
 // 0.66 in cp and 0.13 in density, and freeze within 0.05 K of 273.15 K.

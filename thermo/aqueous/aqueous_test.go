@@ -27,6 +27,8 @@ func TestConformance(t *testing.T) {
 			f := mustNew(t, s.name, share*s.max, 0.005)
 			t.Run(f.Name(), func(t *testing.T) { fluidtest.Run(t, f) })
 		}
+		vague := mustNew(t, s.name, s.max/2, 0.1)
+		t.Run(vague.Name()+" or so", func(t *testing.T) { fluidtest.Run(t, vague) })
 		if s.density20 > 0 {
 			f, err := NewByVolume(s.name, 0.3, 0)
 			if err != nil {
@@ -109,6 +111,28 @@ func TestNames(t *testing.T) {
 	}
 	if len(Solutes()) != 13 {
 		t.Errorf("%d solutes, want 13", len(Solutes()))
+	}
+}
+
+func TestLimits(t *testing.T) {
+	for _, name := range Solutes() {
+		l, err := LimitsOf(name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		f := mustNew(t, l.Aliases[0], l.MassFraction, 0)
+		if got := f.Bounds().MaxT; got != l.MaxT {
+			t.Errorf("%s: up to %g K, want %g", f.Name(), got, l.MaxT)
+		}
+		if _, err := New(name, l.MassFraction+1e-6, 0); err == nil || strings.Contains(err.Error(), "eutectic") != l.Eutectic {
+			t.Errorf("%s beyond its limit: %v", name, err)
+		}
+		if _, err := NewByVolume(name, l.VolumeFraction, 0); (err == nil) != (l.VolumeFraction > 0) {
+			t.Errorf("%s of %g vol %%: %v", name, 100*l.VolumeFraction, err)
+		}
+	}
+	if _, err := LimitsOf("brine"); err == nil {
+		t.Error("brine has limits")
 	}
 }
 

@@ -7,14 +7,15 @@ import "math"
 // density.
 //
 // References are the ASHRAE tables (glycols), the model of Laliberté (ethanol and
-// the salts), IAPWS G4-01 (ammonia). Melinder's own tables are no independent
-// check: where there is nothing else, cp is taken to be within 2 % and density
-// within 0.5 %, which is what Melinder states (from memory), or within what the
-// tables show if that is more. Potassium carbonate has references of cp only at
-// 5 % and lithium chloride to 15 %: there 2 % stands too, and for lithium chloride
-// at 5 °C, where the deviation grows with strength up to 2.1 % at 15 %, 3 % is taken
-// by our own judgement; the same goes for methanol at -10 °C, where the drift over
-// temperature, 0.1 % per kelvin, leads on downwards.
+// the salts) and IAPWS G4-01 (ammonia, down to -13 °C). Melinder's own tables are no
+// independent check: where there is nothing else, cp is taken to be within 2 % and
+// density within 0.5 %, which is what Melinder states (from memory), or within what
+// the tables show if that is more. Potassium carbonate has references of cp only at
+// 5 % by mass and lithium chloride to 15 %: there 2 % stands too.
+//
+// Two figures are our own judgement: 3 % for lithium chloride at 5 °C, where the
+// deviation grows with strength to 2.1 % at 15 %, and 3 % for methanol at -10 °C, where
+// the drift over temperature, 0.1 % per kelvin, leads on downwards.
 type deviation struct{ T, cp, density float64 }
 
 // Beyond the first and the last reference the deviation goes on growing as it did,

@@ -21,6 +21,28 @@ func Solutes() []string {
 	return out
 }
 
+// Limits say how far the polynomials of a solute reach.
+type Limits struct {
+	MassFraction   float64 // largest, kg/kg
+	VolumeFraction float64 // largest by [NewByVolume]; 0 where the solute comes by mass only
+	Eutectic       bool    // the largest is the eutectic
+	MaxT           float64 // K
+	Aliases        []string
+}
+
+// LimitsOf returns the limits of a solute. The error names those like it.
+func LimitsOf(solute string) (Limits, error) {
+	s, err := lookup(solute)
+	if err != nil {
+		return Limits{}, err
+	}
+	l := Limits{MassFraction: s.max, Eutectic: s.eutectic, MaxT: s.maxT, Aliases: slices.Clone(s.aliases)}
+	if s.density20 > 0 {
+		l.VolumeFraction = s.volumeFraction(s.max)
+	}
+	return l, nil
+}
+
 // maxFractionUncertainty is more than anyone who has measured the mixture may
 // leave open.
 const maxFractionUncertainty = 0.1
