@@ -1,6 +1,7 @@
 package site
 
 import (
+	"fmt"
 	"time"
 
 	"go.yaml.in/yaml/v3"
@@ -39,10 +40,11 @@ func (r *reader) load(e entry) HeatLoad {
 }
 
 func (r *reader) stream(o object) Stream {
-	s := Stream{Margin: 5, Humidity: nowhere, Coil: nowhere}
+	s := Stream{Humidity: nowhere, Coil: nowhere}
 	if v, ok := o.need("fluid", "a declared fluid, or a built-in one such as water or dry air"); ok {
 		s.FluidName, s.Fluid = r.fluid(v)
 	}
+	s.Margin = DefaultMargin(s.Fluid)
 	s.Flow, s.FlowKind = r.needSource(o, "flow", "a tag or a constant such as 12 m3/h", flows...)
 	s.Inlet, _ = r.needSource(o, "inlet", "a tag or a constant such as 130 °C", unit.Temperature)
 	s.Outlet, _ = r.needSource(o, "outlet", "a tag or a constant such as 90 °C", unit.Temperature)
@@ -111,15 +113,9 @@ func (o object) meter(s *Stream) {
 
 // checkStream looks at what does not go together.
 func (o object) checkStream(s Stream) {
-	if flow, ok := o.get("flow"); ok && s.Fluid != nil {
-		switch {
-		case s.Fluid.Phase() == thermo.Solid && s.FlowKind != unit.MassFlow && s.FlowKind != 0:
-			flow.fault("%q is a solid, which has a mass flow; found a %s", s.FluidName, s.FlowKind)
-		case s.FlowKind != unit.MolarFlow:
-		case s.Fluid.Phase() != thermo.Gas:
-			flow.fault("a normal or standard volume flow is for gases, and %q is a %s", s.FluidName, s.Fluid.Phase())
-		case s.Fluid.MolarMass() <= 0:
-			flow.fault("a normal or standard volume flow needs a molar mass, and %q has none; want a mass flow or volume flow", s.FluidName)
+	if flow, ok := o.get("flow"); ok && s.Fluid != nil && s.FlowKind != 0 {
+		if err := FlowSuits(s.Fluid, s.FlowKind); err != nil {
+			flow.fault("%v", err)
 		}
 	}
 	if outlet, ok := o.get("outlet"); ok && !s.Outlet.Constant() && s.Inlet == s.Outlet {
@@ -128,6 +124,22 @@ func (o object) checkStream(s Stream) {
 	if s.Flow.Value > 0 && s.Inlet.Value > 0 && s.Outlet.Value > 0 {
 		o.fault("nothing is measured: flow, inlet and outlet are all constants")
 	}
+}
+
+// FlowSuits says why a fluid cannot be metered in a flow of the dimension d, or nil
+// where it can.
+func FlowSuits(f thermo.Fluid, d unit.Dimension) error {
+	switch {
+	case d == unit.MassFlow:
+	case f.Phase() == thermo.Solid:
+		return fmt.Errorf("%q is a solid, and so flows by mass", f.Name())
+	case d != unit.MolarFlow:
+	case f.Phase() != thermo.Gas:
+		return fmt.Errorf("a normal or standard volume flow is for gases, and %q is a %s", f.Name(), f.Phase())
+	case f.MolarMass() <= 0:
+		return fmt.Errorf("a normal or standard volume flow needs a molar mass, and %q has none; want a mass flow or volume flow", f.Name())
+	}
+	return nil
 }
 
 func notNegative(v value, d unit.Dimension) float64 {

@@ -9,9 +9,20 @@ import (
 	"heatreeve/thermo/unit"
 )
 
-// moistAirMargin is the default margin of a gas whose vapour content is known, in K:
-// its dew point is measured, not supposed.
-const moistAirMargin = 1
+// DefaultMargin is the margin to saturation in K of a stream that tells none: 5, and 1
+// for a gas whose vapour content is known, so that its dew point is no guess.
+func DefaultMargin(f thermo.Fluid) float64 {
+	if isMoist(f) {
+		return 1
+	}
+	return 5
+}
+
+func isMoist(f thermo.Fluid) bool {
+	_, humid := f.(thermo.Humid)
+	_, wet := f.(thermo.Wet)
+	return humid || wet
+}
 
 // measures are the ways to say how humid air is.
 var measures = []struct {
@@ -38,10 +49,6 @@ func measureKeys() []string {
 // moisture reads how humid the stream is, and the coil that it passes.
 func (r *reader) moisture(o object, s *Stream) {
 	_, humid := s.Fluid.(thermo.Humid)
-	_, wet := s.Fluid.(thermo.Wet)
-	if humid || wet {
-		s.Margin = moistAirMargin
-	}
 	for _, m := range measures {
 		v, ok := o.get(m.key)
 		switch {
@@ -62,7 +69,7 @@ func (r *reader) moisture(o object, s *Stream) {
 	if v, ok := o.get("coil"); ok {
 		s.Coil, _ = r.source(v, unit.Temperature)
 		s.HasCoil = true
-		if s.Fluid != nil && !humid && !wet {
+		if s.Fluid != nil && !isMoist(s.Fluid) {
 			v.fault("is about a moist gas, and the fluid is %q", s.FluidName)
 		}
 	}

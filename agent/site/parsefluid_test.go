@@ -74,5 +74,5 @@ func ExampleParseFluid() {
 	fmt.Println(err)
 	// Output:
 	// gas: {N2: 79 %, O2: 21 %}
-	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 10 %"
+	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 20 %"
 }

@@ -93,7 +93,7 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 	case u.Dimension == unit.Temperature:
 		t.Min, t.Max = 0, hottest
 	case u.Dimension == unit.Ratio:
-		t.Min, t.Max = 0, 1
+		t.Min, t.Max = 0, 1.02
 	default:
 		t.Min, t.Max = 0, strongest
 	}
@@ -102,7 +102,7 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 
 // What a tag without a range may read, SI: temperatures from absolute zero, absolute
 // pressures from a vacuum, up to what no instrument of a plant shows. A ratio is from
-// 0 % to 100 %.
+// 0 % to 102 %, since humidity sensors in saturated air show a little more than 100 %.
 const (
 	hottest   = 5000 // K
 	strongest = 1e9  // Pa

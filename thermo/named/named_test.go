@@ -168,5 +168,5 @@ func ExampleLookup() {
 	fmt.Println(err)
 	// Output:
 	// propylene glycol 32 %
-	// propylene glycol wants its strength as well: write "propylene glycol 10 %"
+	// propylene glycol wants its strength as well: write "propylene glycol 20 %"
 }

@@ -79,7 +79,7 @@ func solutions() []*word {
 	var ws []*word
 	for _, solute := range aqueous.Solutes() {
 		ws = append(ws, &word{
-			name: solute, dimension: unit.Ratio, sample: "10 %",
+			name: solute, dimension: unit.Ratio, sample: "20 %",
 			make: func(s strength) (thermo.Fluid, error) { return aqueous.New(solute, s.SI(), 0) },
 		})
 	}

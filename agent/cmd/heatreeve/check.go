@@ -12,11 +12,11 @@ func runCheck(_ context.Context, c *call) error {
 	if err := c.parse(1, "the site file"); err != nil {
 		return err
 	}
-	s, err := load(c.flags.Arg(0))
+	s, err := load(c.operands[0])
 	if err != nil {
 		return err
 	}
-	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.flags.Arg(0), s.Name, len(s.Tags), len(s.Loads))
+	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.operands[0], s.Name, len(s.Tags), len(s.Loads))
 	for _, l := range s.Loads {
 		fmt.Fprintf(c.stdout, "  %s: %s, %s\n", l.Name, l.Stream.FluidName, l.Stream.Fluid.Source())
 	}

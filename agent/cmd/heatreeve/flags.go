@@ -4,6 +4,7 @@ import (
 	"errors"
 	"flag"
 	"fmt"
+	"slices"
 	"strings"
 
 	"heatreeve/agent"
@@ -15,23 +16,54 @@ const defaultListen = "127.0.0.1:9617"
 // parse reads the options. Operands must be exactly as many as wanted; what names
 // them in the error. Help is printed on request and answered with flag.ErrHelp.
 func (c *call) parse(wanted int, what string) error {
-	err := c.flags.Parse(c.args)
-	switch {
-	case errors.Is(err, flag.ErrHelp):
-		c.help()
+	if err := c.parseOptions(); err != nil {
 		return err
-	case err != nil:
-		return wrongf("heatreeve %s: %w; see heatreeve %s --help", c.name, err, c.name)
-	case c.flags.NArg() < wanted:
-		return wrongf("heatreeve %s: %s is missing; usage: heatreeve %s %s", c.name, what, c.name, c.operand)
-	case c.flags.NArg() > wanted:
-		return wrongf("heatreeve %s: unexpected %q; usage: heatreeve %s %s", c.name, c.flags.Arg(wanted), c.name, c.operand)
+	}
+	return c.expect(wanted, what)
+}
+
+// parseOptions reads the options wherever they stand, before or after the operands,
+// which it gathers. What follows a bare -- is an operand.
+func (c *call) parseOptions() error {
+	rest, last := c.args, []string(nil)
+	if i := slices.Index(rest, "--"); i >= 0 {
+		rest, last = rest[:i], rest[i+1:]
+	}
+	for len(rest) > 0 {
+		err := c.flags.Parse(rest)
+		switch {
+		case errors.Is(err, flag.ErrHelp):
+			c.help()
+			return err
+		case err != nil:
+			return wrongf("heatreeve %s: %w; see heatreeve %s --help", c.name, err, c.name)
+		}
+		if rest = c.flags.Args(); len(rest) > 0 {
+			c.operands, rest = append(c.operands, rest[0]), rest[1:]
+		}
+	}
+	c.operands = append(c.operands, last...)
+	return nil
+}
+
+// expect holds the operands to their number.
+func (c *call) expect(wanted int, what string) error {
+	switch {
+	case len(c.operands) < wanted:
+		return wrongf("heatreeve %s: %s is missing; usage: %s", c.name, what, c.usage())
+	case len(c.operands) > wanted && wanted > 0:
+		return wrongf("heatreeve %s: unexpected %q; words that belong together stand in quotes; usage: %s", c.name, c.operands[wanted], c.usage())
+	case len(c.operands) > wanted:
+		return wrongf("heatreeve %s: unexpected %q; usage: %s", c.name, c.operands[0], c.usage())
 	}
 	return nil
 }
 
 func (c *call) help() {
 	fmt.Fprintf(c.stdout, "%s\n\n%s.\n", c.usage(), strings.ToUpper(c.about[:1])+c.about[1:])
+	if c.more != "" {
+		fmt.Fprintf(c.stdout, "\n%s", c.more)
+	}
 	first := true
 	c.flags.VisitAll(func(f *flag.Flag) {
 		if first {
@@ -39,8 +71,8 @@ func (c *call) help() {
 			first = false
 		}
 		name, text := flag.UnquoteUsage(f)
-		fmt.Fprintf(c.stdout, "  --%s %s\n        %s", f.Name, name, text)
-		if f.DefValue != "" && f.DefValue != "0s" {
+		fmt.Fprintf(c.stdout, "  %s\n        %s", strings.TrimSpace("--"+f.Name+" "+name), text)
+		if f.DefValue != "" && f.DefValue != "0s" && f.DefValue != "false" {
 			fmt.Fprintf(c.stdout, " (default %s)", f.DefValue)
 		}
 		fmt.Fprintln(c.stdout)

@@ -33,20 +33,24 @@ type command struct {
 	name    string
 	operand string // as in the usage line
 	about   string
+	more    string // what else its help says, or ""
 	run     func(ctx context.Context, c *call) error
 }
 
 var commands = []command{
-	{"run", "--site FILE --data DIR [--listen ADDR]", "run the agent on a plant", runAgent},
-	{"check", "FILE", "check a site file and tell every fault in it", runCheck},
-	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", runDemo},
-	{"version", "", "tell the version", runVersion},
+	{"run", "--site FILE --data DIR [--listen ADDR]", "run the agent on a plant", "", runAgent},
+	{"check", "FILE", "check a site file and tell every fault in it", "", runCheck},
+	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
+	{"properties", "FLUID --temperature T[,T2,...] [--pressure P] [--barometer P] [--json] | --list [--json]", "tell the properties of a fluid", fluidHelp, runProperties},
+	{"duty", "FLUID --flow F --from T1 --to T2 [--pressure P] [--outlet-pressure P] [--barometer P] [--meter-at inlet|outlet] [--json]", "work one heat duty, with its working", fluidHelp + dutyHelp, runDuty},
+	{"version", "", "tell the version", "", runVersion},
 }
 
 // call is one invocation of a command.
 type call struct {
 	command
 	args           []string
+	operands       []string // what is no option, once parsed
 	stdout, stderr io.Writer
 	flags          *flag.FlagSet
 }

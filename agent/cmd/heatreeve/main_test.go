@@ -44,7 +44,7 @@ func TestExitStatusAndMessages(t *testing.T) {
 		{"demo --help", exitGood, "--speed", ""},
 		{"version", exitGood, "heatreeve development", ""},
 		{"version extra", exitWrong, "", `unexpected "extra"`},
-		{"chekc", exitWrong, "", `unknown command "chekc"; known: run, check, demo, version, help`},
+		{"chekc", exitWrong, "", `unknown command "chekc"; known: run, check, demo, properties, duty, version, help`},
 		{"check", exitWrong, "", "the site file is missing"},
 		{"check " + example, exitGood, `good: "Brackwater Creamery", tags: 11, loads: 3`, ""},
 		{"check ../../../configs/tarnholt-heat-works.yaml", exitGood, "note: broker.ca: ", ""},
@@ -74,8 +74,8 @@ func TestHelpNamesTheOptions(t *testing.T) {
 		if !strings.Contains(all, "heatreeve "+c.name) || !strings.Contains(help, "heatreeve "+c.name) {
 			t.Errorf("help does not name %s", c.name)
 		}
-		for _, word := range strings.FieldsFunc(c.operand, func(r rune) bool { return strings.ContainsRune(" []", r) }) {
-			if strings.HasPrefix(word, "--") && !strings.Contains(help, "  "+word+" ") {
+		for _, word := range strings.FieldsFunc(c.operand, func(r rune) bool { return strings.ContainsRune(" []|", r) }) {
+			if strings.HasPrefix(word, "--") && !strings.Contains(help, "\n  "+word+" ") && !strings.Contains(help, "\n  "+word+"\n") {
 				t.Errorf("%s: usage names %s, the options do not:\n%s", c.name, word, help)
 			}
 		}

@@ -1,0 +1,173 @@
+package main
+
+import (
+	"encoding/csv"
+	"math"
+	"os"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+)
+
+// spellings of the units in the table of worked examples.
+var spellings = map[string]string{"scfm60": "scfm (60 °F)"}
+
+// mixtures that the table of worked examples tells in words.
+var mixtures = map[string]string{
+	"flue gas": "{gas: {N2: 71.2 %, CO2: 8.6 %, H2O: 17.2 %, O2: 3 %}}",
+}
+
+// Every stream of the worked examples, whose sources stand in its row, comes out of the
+// command as well, within the row's own tolerance. Rows of tables that only the tests
+// of thermo have are left to them.
+func TestDutyWorksTheExamples(t *testing.T) {
+	ran := 0
+	for _, r := range workedExamples(t) {
+		fluid, ok := mixtures[r["fluid"]]
+		if !ok {
+			fluid = r["fluid"]
+		}
+		if status, _, _ := invoke("properties", fluid, "--temperature", r["T_in_K"]+" K", "--pressure", r["p_Pa"]+" Pa"); r["kind"] != "stream" || status != exitGood {
+			continue
+		}
+		unit, ok := spellings[r["flow_unit"]]
+		if !ok {
+			unit = r["flow_unit"]
+		}
+		v := askJSON[answer](t, "duty", fluid, "--flow", r["flow"]+" "+unit, "--from", r["T_in_K"]+" K", "--to", r["T_out_K"]+" K",
+			"--pressure", r["p_Pa"]+" Pa", "--meter-at", r["meter"])
+		ran++
+		for _, f := range [...]struct {
+			name, column string
+			got          float64
+		}{{"duty", "expected", v.Duty}, {"mass flow", "mass", v.MassFlow}} {
+			want, tolerance := number(t, r[f.column]), number(t, r["tol_rel"])
+			if !(math.Abs(f.got/want-1) <= tolerance) {
+				t.Errorf("%s: %s = %.9g, want %.9g within %g (%s)", r["id"], f.name, f.got, want, tolerance, r["source"])
+			}
+		}
+		if dT := v.OutletT - v.InletT; math.Abs(v.MassFlow*v.MeanCp*dT/v.Duty-1) > 1e-12 {
+			t.Errorf("%s: mean cp %g times mass flow and %g K is not the duty", r["id"], v.MeanCp, dT)
+		}
+	}
+	if ran < 20 {
+		t.Errorf("%d examples ran, want 20 or more", ran)
+	}
+	t.Logf("%d examples by the command", ran)
+}
+
+func number(t *testing.T, s string) float64 {
+	t.Helper()
+	x, err := strconv.ParseFloat(s, 64)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return x
+}
+
+func workedExamples(t *testing.T) []map[string]string {
+	t.Helper()
+	file, err := os.Open("../../../thermo/testdata/worked-examples.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer file.Close()
+	c := csv.NewReader(file)
+	c.Comment = '#'
+	lines, err := c.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var all []map[string]string
+	for _, line := range lines[1:] {
+		r := make(map[string]string)
+		for i, cell := range line {
+			r[lines[0][i]] = cell
+		}
+		all = append(all, r)
+	}
+	return all
+}
+
+// The working says which way the heat goes, how the flow became kg/s, and what is
+// sure: 12 t/h of feedwater is the worked example W09, 1070.6 kW.
+func TestDutyTellsItsWorking(t *testing.T) {
+	for _, tt := range []struct {
+		args []string
+		want []string
+	}{
+		{
+			[]string{"duty", "water", "--flow", "12 t/h", "--from", "105 °C", "--to", "180 °C", "--pressure", "6 MPa"},
+			[]string{"12 t/h = 3.33333 kg/s", "105 °C = 378.15 K", "The stream takes 1070", "Source: IAPWS R7-97", "mean cp", "/ 75 K ="},
+		},
+		{
+			[]string{"duty", "--from", "70°C", "--to", "50°C", "--flow", "10 m3/h", "--pressure", "3 barg", "--barometer", "100 kPa", "water"},
+			[]string{"The stream gives ", "10 m3/h at the inlet = 0.00277778 m3/s ×", "400 kPa absolute", "note: the meter is taken to sit at the inlet; at the outlet", "density to"},
+		},
+		{
+			[]string{"duty", "water", "--flow", "1 kg/s", "--from", "20°C", "--to", "98°C"},
+			[]string{"note: outlet at 98.00 °C is within 5 K of boiling", "the agent would not book it"},
+		},
+		{
+			[]string{"duty", "N2", "--flow", "100 Nm3/h", "--from", "20°C", "--to", "20°C"},
+			[]string{"mol/s × 0.0280", "neither gives heat nor takes it", "that of the one temperature"},
+		},
+		{
+			[]string{"duty", "water", "--flow", "1 kg/s", "--from", "20°C", "--to", "30°C", "--pressure", "5 bar", "--outlet-pressure", "3 bar"},
+			[]string{"500 kPa absolute", "300 kPa absolute"},
+		},
+	} {
+		status, out, errs := invoke(tt.args...)
+		if status != exitGood || errs != "" {
+			t.Errorf("%q: status %d, %s", tt.args, status, errs)
+		}
+		for _, piece := range tt.want {
+			if !strings.Contains(out, piece) {
+				t.Errorf("%q does not say %q:\n%s", tt.args, piece, out)
+			}
+		}
+		if slices.ContainsFunc(strings.Split(out, "\n"), func(l string) bool { return strings.HasSuffix(l, " ") }) {
+			t.Errorf("%q: blanks at the end of a line:\n%s", tt.args, out)
+		}
+	}
+}
+
+func TestFluidCommandsRefuse(t *testing.T) {
+	for _, tt := range []struct {
+		args   []string
+		status int
+		want   string
+	}{
+		{[]string{"properties"}, exitWrong, "the fluid, such as water"},
+		{[]string{"properties", "water"}, exitWrong, "--temperature is missing"},
+		{[]string{"properties", "water", "--temperature", "20"}, exitWrong, "unit is missing"},
+		{[]string{"properties", "water", "--temperature", "20 °C,"}, exitWrong, "--temperature is missing"},
+		{[]string{"properties", "water", "--temperature", "20,5 °C"}, exitWrong, `"20": unit is missing`},
+		{[]string{"properties", "water", "--temperature", "4 bar"}, exitWrong, "unit of pressure"},
+		{[]string{"properties", "watr", "--temperature", "20 °C"}, exitWrong, `near: "water"; known: water, `},
+		{[]string{"properties", "dry", "air", "--temperature", "20 °C"}, exitWrong, `unexpected "air"; words that belong together stand in quotes`},
+		{[]string{"properties", "propylene glycol", "--temperature", "20 °C"}, exitWrong, "wants its strength"},
+		{[]string{"properties", "{gas: {N2: 79 %}}", "--temperature", "20 °C"}, exitWrong, "fluid:1:7: gas: the mole fractions add up to 0.79"},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "3 barg"}, exitWrong, "write --barometer as well"},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "3 barg", "--barometer", "3 bar"}, exitWrong, "no pressure of the air"},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "-3 bar"}, exitWrong, "not above vacuum"},
+		{[]string{"properties", "water", "--temperature", "120 °C"}, exitFailed, "allowed at 101.325 kPa absolute: 0 °C to 99.97"},
+		{[]string{"properties", "water", "--temperature", "20 °C,400 °C"}, exitFailed, "400 °C"},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "2000 bar"}, exitFailed, "pressure 200000 kPa is above 100000 kPa"},
+		{[]string{"properties", "--list", "water"}, exitWrong, `unexpected "water"`},
+		{[]string{"duty", "water", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "--flow is missing"},
+		{[]string{"duty", "water", "--flow", "3 kg/s", "--to", "30 °C"}, exitWrong, "--from is missing"},
+		{[]string{"duty", "water", "--flow", "3 kW", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "unit of power"},
+		{[]string{"duty", "water", "--flow", "-3 kg/s", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "below zero; swap --from and --to"},
+		{[]string{"duty", "water", "--flow", "3 Nm3/h", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "is for gases"},
+		{[]string{"duty", "water", "--flow", "3 m3/h", "--meter-at", "middle", "--from", "20 °C", "--to", "30 °C"}, exitWrong, `"middle" is not known; allowed: inlet, outlet`},
+		{[]string{"duty", "water", "--flow", "3 kg/s", "--from", "20 °C", "--to", "130 °C"}, exitFailed, "outlet: water: "},
+		{[]string{"duty", "water", "--flow", "3e9 kg/s", "--from", "20 °C", "--to", "30 °C"}, exitFailed, "more than any pipe carries"},
+	} {
+		status, out, errs := invoke(tt.args...)
+		if status != tt.status || out != "" || !strings.Contains(errs, tt.want) {
+			t.Errorf("heatreeve %q: status %d, printed %q, said %q; want %d, ...%q...", tt.args, status, out, errs, tt.status, tt.want)
+		}
+	}
+}
