@@ -20,7 +20,7 @@ func ExampleLiquid() {
 	fmt.Println(err)
 	// Output:
 	// density 983.30 kg/m³, cp 4182.3 J/(kg K)
-	// water: pressure 300 kPa is below 361.501 kPa (saturation: the water boils)
+	// water: pressure 300 kPa is below 361.501 kPa (saturation lies there: in between water boils and its heat is latent; beyond, the fluid to ask for is "steam")
 }
 
 func ExampleSteam() {

@@ -1,9 +1,7 @@
 package water
 
 import (
-	"encoding/csv"
 	"math"
-	"os"
 	"strconv"
 	"testing"
 
@@ -61,21 +59,11 @@ type state95 struct {
 
 func states95(t *testing.T) []state95 {
 	t.Helper()
-	file, err := os.Open("testdata/iapws95.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	r := csv.NewReader(file)
-	r.Comment = '#'
-	rows, err := r.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
 	var out []state95
-	for _, row := range rows[1:] {
+	for _, row := range readTable(t, "testdata/iapws95.csv") {
 		s := state95{phase: row[0]}
 		for k, to := range []*float64{&s.T, &s.p, &s.density, &s.enthalpy, &s.cp, &s.cv} {
+			var err error
 			if *to, err = strconv.ParseFloat(row[k+1], 64); err != nil {
 				t.Fatalf("row %q: %v", row, err)
 			}

@@ -1,5 +1,7 @@
 package water
 
+import "heatreeve/thermo"
+
 // Basic equation of region 1: R7-97(2012), equation 7 and table 2.
 //
 //	g/(RT) = γ(π, τ) = Σ n (7.1 − π)^I (τ − 1.222)^J,  π = p/16.53 MPa, τ = 1386 K/T
@@ -12,10 +14,6 @@ const (
 	region1PiShift     = 7.1
 	region1TauShift    = 1.222
 )
-
-// lowestJ1 is the most negative exponent of τ − 1.222 in table 2; the table of
-// powers of that quantity starts there.
-const lowestJ1 = -41
 
 var region1Terms = [...]term{
 	{0.14632971213167, 0, -2},
@@ -54,61 +52,86 @@ var region1Terms = [...]term{
 	{-9.3537087292458e-26, 32, -41},
 }
 
-var region1Groups = grouped(region1Terms[:], lowestJ1)
+var region1Weights = weigh(region1Terms[:])
 
-// region1 evaluates the basic equation and its derivatives in one pass.
-func region1(T, p float64) gibbs {
-	pi, tau := p/region1Pressure, region1Temperature/T
-	x, y := region1PiShift-pi, tau-region1TauShift
-	var a, b powers
-	powersOfPi1(&a, x)
-	powersOfTau1(&b, y)
-	// (7.1 − π) falls as π rises: each derivative by π changes the sign.
-	return sum(region1Groups, &a, &b, -pi/x, tau/y)
+// region1 follows from γ by the relations of R7-97(2012), table 3:
+//
+//	h = RT τγτ,  cp = −R τ²γττ,  v = RT πγπ/p
+func region1(T, p float64) thermo.Balance {
+	var w powers1
+	tau := region1Temperature / T
+	w.fill(region1PiShift-p*(1/region1Pressure), tau-region1TauShift)
+	return w.balance(T, tau)
 }
 
-// powersOfPi1 fills a[k] = x^k for the exponents I of table 2.
-func powersOfPi1(a *powers, x float64) {
-	a[0], a[1] = 1, x
-	a[2] = x * x
-	a[3] = a[2] * x
-	a[4] = a[2] * a[2]
-	a[5] = a[3] * a[2]
-	a[8] = a[4] * a[4]
-	a[21] = a[8] * a[8] * a[5]
-	a[23] = a[21] * a[2]
-	a[29] = a[21] * a[8]
-	a[30] = a[29] * x
-	a[31] = a[29] * a[2]
-	a[32] = a[29] * a[3]
+func (w *powers1) balance(T, tau float64) thermo.Balance {
+	t := tau * w.r
+	return thermo.Balance{
+		Enthalpy: gasConstant * region1Temperature * w.r * w.sum(&region1Weights.j),
+		Cp:       -gasConstant * t * t * w.sum(&region1Weights.jj),
+		// 7.1 − π falls as π rises: a derivative by π changes the sign.
+		Density: -region1Pressure * w.x / (gasConstant * T * w.sum(&region1Weights.i)),
+	}
 }
 
-// powersOfTau1 fills b[k − lowestJ1] = y^k for the exponents J of table 2.
-func powersOfTau1(b *powers, y float64) {
-	const o = -lowestJ1
-	b[o], b[o+1] = 1, y
-	b[o+2] = y * y
-	b[o+3] = b[o+2] * y
-	b[o+4] = b[o+2] * b[o+2]
-	b[o+5] = b[o+3] * b[o+2]
-	b[o+6] = b[o+3] * b[o+3]
-	b[o+10] = b[o+5] * b[o+5]
-	b[o+17] = b[o+10] * b[o+5] * b[o+2]
+// region1All adds cv = cp + R (πγπ − πτγπτ)²/(π²γππ), table 3.
+func region1All(T, p float64) thermo.Properties {
+	var w powers1
+	tau := region1Temperature / T
+	w.fill(region1PiShift-p*(1/region1Pressure), tau-region1TauShift)
+	b := w.balance(T, tau)
+	x := p / (region1Pressure * w.x)
+	d := p/(gasConstant*T*b.Density) + x*tau*w.r*w.sum(&region1Weights.ij)
+	return complete(b, p, b.Cp+gasConstant*d*d/(x*x*w.sum(&region1Weights.ii)))
+}
+
+// powers1 are the powers of x = 7.1 − π, y = τ − 1.222, r = 1/y and z = x/y
+// that table 2 is made of. Its last six lines are small multiples of x²¹ y⁻²⁹.
+type powers1 struct {
+	x, x2, x5, x8             float64
+	y, y2, y3, y6, y10, y17   float64
+	r, r2, r3, r5, r6, r8, r9 float64
+	z, z2, z8, tail           float64
+}
+
+func (w *powers1) fill(x, y float64) {
 	r := 1 / y
-	b[o-1] = r
-	b[o-2] = r * r
-	b[o-3] = b[o-2] * r
-	b[o-4] = b[o-2] * b[o-2]
-	b[o-5] = b[o-3] * b[o-2]
-	b[o-6] = b[o-3] * b[o-3]
-	b[o-7] = b[o-4] * b[o-3]
-	b[o-8] = b[o-4] * b[o-4]
-	b[o-9] = b[o-5] * b[o-4]
-	b[o-11] = b[o-6] * b[o-5]
-	b[o-29] = b[o-11] * b[o-9] * b[o-9]
-	b[o-31] = b[o-29] * b[o-2]
-	b[o-38] = b[o-29] * b[o-9]
-	b[o-39] = b[o-31] * b[o-8]
-	b[o-40] = b[o-31] * b[o-9]
-	b[o-41] = b[o-38] * b[o-3]
+	w.x = x
+	w.x2 = x * x
+	x4 := w.x2 * w.x2
+	w.x5 = x4 * x
+	w.x8 = x4 * x4
+	w.y = y
+	w.y2 = y * y
+	w.y3 = w.y2 * y
+	w.y6 = w.y3 * w.y3
+	y4 := w.y2 * w.y2
+	w.y10 = w.y6 * y4
+	w.y17 = w.y10 * w.y6 * y
+	w.r = r
+	w.r2 = r * r
+	w.r3 = w.r2 * r
+	w.r5 = w.r3 * w.r2
+	w.r6 = w.r3 * w.r3
+	w.r8 = w.r5 * w.r3
+	w.r9 = w.r8 * r
+	w.z = x * r
+	w.z2 = w.z * w.z
+	z4 := w.z2 * w.z2
+	w.z8 = z4 * z4
+	w.tail = w.z8 * w.z8 * z4 * w.z * w.r9 // x²¹ y⁻³⁰
+}
+
+// sum returns Σ n x^I y^J over the 34 lines of table 2, with the factors n; one
+// statement for each I, those above 5 together.
+func (w *powers1) sum(n *lines) float64 {
+	s0 := w.r2*(n[0]+n[1]*w.y) + n[2] + w.y*n[3] + w.y2*(n[4]+n[5]*w.y) + w.y2*w.y2*(n[6]+w.y*n[7])
+	s1 := w.r9*(n[8]+n[9]*w.y2) + n[10]*w.r + n[11] + w.y*(n[12]+w.y2*n[13])
+	s2 := w.r3*n[14] + n[15] + w.y*n[16] + w.y3*n[17] + w.y17*n[18]
+	s3 := n[19]*w.r2*w.r2 + n[20] + n[21]*w.y6
+	s4 := w.r2*(n[22]*w.r3+n[23]) + n[24]*w.y10
+	s5 := n[25] * w.r8 * w.x5
+	s8 := w.x8 * w.r6 * (n[26]*w.r5 + n[27])
+	tail := w.tail * (w.y*(n[28]+w.z2*n[29]) + w.z8*(n[30]+w.z*n[31]+w.z2*(n[32]+w.z*n[33])))
+	return s0 + w.x*s1 + w.x2*(s2+w.x*s3+w.x2*s4) + s5 + s8 + tail
 }

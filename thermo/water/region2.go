@@ -1,6 +1,6 @@
 package water
 
-import "math"
+import "heatreeve/thermo"
 
 // Basic equation of region 2: R7-97(2012), equations 15 to 17, tables 10 and 11.
 //
@@ -14,15 +14,6 @@ const (
 	region2Temperature = 540.0 // K
 	region2TauShift    = 0.5
 )
-
-// idealTerm is one line of table 10.
-type idealTerm struct {
-	n float64
-	j int8
-}
-
-// lowestJ2 is the most negative exponent of τ in table 10.
-const lowestJ2 = -5
 
 var region2Ideal = [...]idealTerm{
 	{-9.6927686500217, 0},
@@ -82,84 +73,118 @@ var region2Residual = [...]term{
 	{-9.436970724121e-07, 24, 58},
 }
 
-var region2Groups = grouped(region2Residual[:], 0)
+var region2Weights = weigh(region2Residual[:])
 
-// region2 evaluates the basic equation and its derivatives in one pass.
-func region2(T, p float64) gibbs {
-	pi, tau := p/region2Pressure, region2Temperature/T
+// region2 follows from γ by the relations of R7-97(2012), table 12.
+func region2(T, p float64) thermo.Balance {
+	var w powers2
+	tau := region2Temperature / T
 	y := tau - region2TauShift
-	var a, b powers
-	powersOfPi2(&a, pi)
-	powersOfTau2(&b, y)
-	return region2IdealPart(pi, tau).plus(sum(region2Groups, &a, &b, 1, tau/y))
+	w.fill(p*(1/region2Pressure), y)
+	return w.balance(T, p, tau, tau/y)
 }
 
-// region2IdealPart is the ideal-gas part of the basic equation.
-func region2IdealPart(pi, tau float64) gibbs {
-	var c [16]float64
-	const o = -lowestJ2
-	c[o], c[o+1] = 1, tau
-	c[o+2] = tau * tau
-	c[o+3] = c[o+2] * tau
-	r := 1 / tau
-	c[o-1] = r
-	c[o-2] = r * r
-	c[o-3] = c[o-2] * r
-	c[o-4] = c[o-2] * c[o-2]
-	c[o-5] = c[o-3] * c[o-2]
-	g := gibbs{g: math.Log(pi), p: 1, pp: -1}
-	for k := range region2Ideal {
-		t := &region2Ideal[k]
-		v, j := t.n*c[uint8(t.j-lowestJ2)&15], float64(t.j)
-		g.g += v
-		g.t += j * v
-		g.tt += j * (j - 1) * v
+func (w *powers2) balance(T, p, tau, f float64) thermo.Balance {
+	t, tt := region2IdealSums(tau, T*(1/region2Temperature))
+	rt := gasConstant * T
+	return thermo.Balance{
+		Enthalpy: rt * (t + f*w.sum(&region2Weights.j)),
+		Cp:       -gasConstant * (tt + f*f*w.sum(&region2Weights.jj)),
+		Density:  p / (rt * (1 + w.sum(&region2Weights.i))),
 	}
-	return g
 }
 
-// powersOfPi2 fills a[k] = x^k for the exponents I of table 11.
-func powersOfPi2(a *powers, x float64) {
-	a[0], a[1] = 1, x
-	for k := 2; k <= 10; k++ {
-		a[k] = a[k/2] * a[k-k/2]
+// region2All adds cv = cp − R (1 + πγrπ − πτγrπτ)²/(1 − π²γrππ), table 12.
+func region2All(T, p float64) thermo.Properties {
+	var w powers2
+	tau := region2Temperature / T
+	y := tau - region2TauShift
+	w.fill(p*(1/region2Pressure), y)
+	b := w.balance(T, p, tau, tau/y)
+	d := p/(gasConstant*T*b.Density) - tau/y*w.sum(&region2Weights.ij)
+	return complete(b, p, b.Cp-gasConstant*d*d/(1-w.sum(&region2Weights.ii)))
+}
+
+var region2IdealJ, region2IdealJJ = func() (j, jj [len(region2Ideal)]float64) {
+	for k, t := range region2Ideal {
+		e := float64(t.j)
+		j[k], jj[k] = t.n*e, t.n*e*(e-1)
 	}
-	a[16] = a[8] * a[8]
-	a[18] = a[9] * a[9]
-	a[20] = a[10] * a[10]
-	a[21] = a[20] * x
-	a[22] = a[20] * a[2]
-	a[23] = a[20] * a[3]
-	a[24] = a[20] * a[4]
+	return j, jj
+}()
+
+// region2IdealSums returns τγ°τ and τ²γ°ττ; r is 1/τ.
+func region2IdealSums(tau, r float64) (t, tt float64) {
+	tau2, r2 := tau*tau, r*r
+	r4 := r2 * r2
+	n := &region2IdealJ
+	t = r4*(n[2]*r+n[3]) + r2*(n[4]*r+n[5]) + n[6]*r + n[1]*tau + tau2*(n[7]+n[8]*tau)
+	n = &region2IdealJJ
+	tt = r4*(n[2]*r+n[3]) + r2*(n[4]*r+n[5]) + n[6]*r + tau2*(n[7]+n[8]*tau)
+	return t, tt
 }
 
-// powersOfTau2 fills b[k] = y^k for the exponents J of table 11.
-func powersOfTau2(b *powers, y float64) {
-	b[0], b[1] = 1, y
-	for k := 2; k <= 29; k++ {
-		b[k] = b[k/2] * b[k-k/2]
-	}
-	b[35] = b[29] * b[6]
-	b[36] = b[29] * b[7]
-	b[39] = b[29] * b[10]
-	b[40] = b[29] * b[11]
-	b[48] = b[29] * b[19]
-	b[50] = b[29] * b[21]
-	b[53] = b[29] * b[24]
-	b[57] = b[29] * b[28]
-	b[58] = b[29] * b[29]
+// powers2 are the powers of x = π and y = τ − 0.5 that table 11 is made of.
+type powers2 struct {
+	x, x2, x4, x8, x16                float64
+	y, y2, y3, y4, y6, y7, y8         float64
+	y10, y11, y13, y14, y16, y18      float64
+	y20, y21, y25, y26, y29, y35, y40 float64
 }
 
-// boundary23 is the auxiliary equation between regions 2 and 3: R7-97(2012),
-// equations 5 and 6, table 1; 623.15 K and 16.5292 MPa to 863.15 K and 100 MPa.
-var boundary23 = [...]float64{348.05185628969, -1.1671859879975, 0.0010192970039326, 572.54459862746, 13.9188397787}
-
-func boundary23Pressure(T float64) float64 {
-	n := &boundary23
-	return 1e6 * (n[0] + T*(n[1]+T*n[2]))
+func (w *powers2) fill(x, y float64) {
+	w.x = x
+	w.x2 = x * x
+	w.x4 = w.x2 * w.x2
+	w.x8 = w.x4 * w.x4
+	w.x16 = w.x8 * w.x8
+	w.y = y
+	w.y2 = y * y
+	w.y3 = w.y2 * y
+	w.y4 = w.y2 * w.y2
+	w.y6 = w.y3 * w.y3
+	w.y7 = w.y4 * w.y3
+	w.y8 = w.y4 * w.y4
+	w.y10 = w.y6 * w.y4
+	w.y11 = w.y7 * w.y4
+	w.y13 = w.y7 * w.y6
+	w.y14 = w.y7 * w.y7
+	w.y16 = w.y8 * w.y8
+	w.y18 = w.y10 * w.y8
+	w.y20 = w.y10 * w.y10
+	w.y21 = w.y11 * w.y10
+	w.y25 = w.y14 * w.y11
+	w.y26 = w.y13 * w.y13
+	w.y29 = w.y18 * w.y11
+	w.y35 = w.y21 * w.y14
+	w.y40 = w.y20 * w.y20
 }
 
-func boundary23Temperature(p float64) float64 {
-	n := &boundary23
-	return n[3] + math.Sqrt((p/1e6-n[4])/n[2])
+// sum returns Σ n x^I y^J over the 43 lines of table 11, with the factors n; one
+// statement for each I, those above 10 together.
+func (w *powers2) sum(n *lines) float64 {
+	s1 := n[0] + w.y*n[1] + w.y2*n[2] + w.y3*n[3] + w.y6*n[4]
+	s2 := w.y*n[5] + w.y2*n[6] + w.y4*n[7] + w.y7*(n[8]+w.y29*n[9])
+	s3 := n[10] + w.y*n[11] + w.y3*n[12] + w.y6*n[13] + w.y35*n[14]
+	s4 := w.y*n[15] + w.y2*n[16] + w.y3*n[17]
+	s5 := w.y7 * n[18]
+	s6 := w.y3*n[19] + w.y16*n[20] + w.y35*n[21]
+	s7 := n[22] + w.y11*n[23] + w.y25*n[24]
+	s8 := w.y8*n[25] + w.y7*w.y29*n[26]
+	s9 := w.y13 * n[27]
+	s10 := w.y4*n[28] + w.y10*n[29] + w.y14*n[30]
+	low := s1 + w.x*s2 + w.x2*(s3+w.x*s4) + w.x4*(s5+w.x*s6+w.x2*(s7+w.x*s8)) + w.x8*(s9+w.x*s10)
+	return w.x*low + w.x16*w.high(n)
+}
+
+// high returns the lines with I from 16 on, divided by x¹⁶.
+func (w *powers2) high(n *lines) float64 {
+	s16 := w.y29*n[31] + w.y25*w.y25*n[32]
+	s18 := w.y16 * w.y40 * w.y * n[33]
+	s20 := w.y20*n[34] + w.y35*n[35] + w.y8*w.y40*n[36]
+	s21 := w.y21 * n[37]
+	s22 := w.y13 * w.y40 * n[38]
+	s23 := w.y13 * w.y26 * n[39]
+	s24 := w.y26*n[40] + w.y40*(n[41]+w.y18*n[42])
+	return s16 + w.x2*s18 + w.x4*(s20+w.x*s21+w.x2*(s22+w.x*s23+w.x2*s24))
 }
