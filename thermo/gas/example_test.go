@@ -41,3 +41,18 @@ func ExampleNew() {
 	// dew point 57.1 °C, heat -508.9 kW, <nil>
 	// unknown gas "nitrogn", did you mean "N2" (nitrogen); known gases: N2, O2, Ar, CO2, CO, H2O, H2, He, CH4, C2H6, C3H8, C4H10, C5H12, C2H4, NH3, SO2, H2S, NO, NO2, N2O, HCl, Cl2, dry air
 }
+
+func ExampleFlueGas() {
+	oil := gas.Fuel{Mass: gas.Elements{C: 0.865, H: 0.133, S: 0.002}}
+	f, err := gas.FlueGas(oil, gas.Combustion{DryO2: 0.04, HumidityRatio: 0.008})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	dew, _ := f.Fluid.Span(101325)
+	fmt.Printf("%s\n%.1f %% excess air, %.2f kg of flue gas per kg of oil, dry CO2 %.1f %%, water dew point %.0f °C\n",
+		f.Fluid.Name(), 100*f.ExcessAir, f.PerFuel, 100*f.Dry()["CO2"], dew-273.15)
+	// Output:
+	// gas: {N2: 73.2 %, H2O: 11.31 %, CO2: 11.06 %, O2: 3.548 %, Ar: 0.8779 %, SO2: 0.009551 %}
+	// 22.0 % excess air, 18.87 kg of flue gas per kg of oil, dry CO2 12.5 %, water dew point 48 °C
+}
