@@ -1,25 +1,25 @@
-// Package aqueous holds mixtures of water with one of thirteen solutes: two
-// glycols, ethanol, methanol and glycerol, seven salts, and ammonia.
+// Package aqueous holds mixtures of water with one of thirteen solutes: two glycols,
+// ethanol, methanol and glycerol, seven salts, and ammonia.
 //
-// Density, cp and freezing point are Melinder's polynomials in temperature and
-// mass fraction, from the freezing point to 40 °C, to 100 °C for the glycols, to
-// 30 °C for ammonia, each to a largest concentration of its own; calcium,
-// magnesium and sodium chloride end at their eutectic. They describe the plain
-// mixture. Not modelled: the inhibitors of a commercial fluid (some per cent of
-// it), two solutes at once, crystals of solute or hydrate on the far side of an
+// Density, cp and freezing point are Melinder's polynomials in temperature and mass
+// fraction, from the freezing point to 40 °C, to 100 °C for the glycols, to 30 °C
+// for ammonia, each to a largest concentration of its own; calcium, magnesium and
+// sodium chloride end at their eutectic, 29.7 %, 20.5 % and 23 %. They describe the
+// plain mixture. Not modelled: the inhibitors of a commercial fluid (some per cent
+// of it), two solutes at once, crystals of solute or hydrate on the far side of an
 // eutectic, gas driven out of solution.
 //
-// Largest deviations found, of cp and of density, in per cent: ethylene
-// glycol 3.2 and 0.92, propylene glycol 0.35 and 0.64 (ASHRAE, density worst
-// above 40 °C); sodium chloride 0.38 and 0.05, calcium chloride 0.54 and 0.43,
-// magnesium chloride 0.90 and 0.28, lithium chloride 2.1 and 0.17, potassium
-// carbonate 0.17 (5 % by mass only) and 0.71, potassium acetate and formate 0.38
-// and 0.29 in density, ethanol 2.5 and 0.52 (Laliberté); ammonia 2.5 and 0.26
-// from 5 °C to 25 °C, 4.6 and 0.36 from -13 °C to 30 °C (IAPWS G4-01). Methanol and glycerol have only Melinder's own tables to be held
-// against, 2.3 and 0.4 in cp; ethanol of 60 % at -10 °C is 3.4 off them. With
-// nothing dissolved the polynomials differ from IAPWS-IF97 by at most
-// 0.66 in cp and 0.13 in density, and freeze within 0.05 K of 273.15 K.
-// [mixture.Uncertainty] follows from these.
+// Largest deviations found, of cp and of density, in per cent: ethylene glycol 3.2
+// and 0.92, propylene glycol 0.35 and 0.64 (ASHRAE, density worst above 40 °C);
+// sodium chloride 0.38 and 0.05, calcium chloride 0.54 and 0.43, magnesium chloride
+// 0.90 and 0.28, lithium chloride 2.1 and 0.17, potassium carbonate 0.17 (5 % by
+// mass only) and 0.71, potassium acetate and formate 0.38 and 0.29 in density,
+// ethanol 2.5 and 0.52 (Laliberté); ammonia 2.5 and 0.26 from 5 °C to 25 °C, 4.6 and
+// 0.36 from -13 °C to 30 °C (IAPWS G4-01). Methanol and glycerol have only
+// Melinder's own tables to be held against, 2.3 and 0.4 in cp; ethanol of 60 % at
+// -10 °C is 3.4 off them. With nothing dissolved the polynomials differ from
+// IAPWS-IF97 by at most 0.66 in cp and 0.13 in density, and freeze within 0.05 K of
+// 273.15 K. The uncertainties of a state follow from these.
 //
 // The freezing curves stand within 0.6 K of the ASHRAE glycol tables (from memory)
 // to 30 % by mass. Stronger propylene glycol freezes up to 1.3 K sooner here than

@@ -69,6 +69,9 @@ func TestNewRefuses(t *testing.T) {
 		want   string
 	}{
 		{"propylen glycol", 0.3, 0, `unknown solute "propylen glycol", did you mean "propylene glycol"; known solutes: ethylene glycol, propylene glycol, ethanol, methanol, glycerol, calcium chloride, magnesium chloride, sodium chloride, potassium carbonate, potassium acetate, potassium formate, lithium chloride, ammonia`},
+		{"glycol", 0.3, 0, `unknown solute "glycol", did you mean "ethylene glycol" or "propylene glycol"; known`},
+		{"Calcium", 0.3, 0, `unknown solute "Calcium", did you mean "calcium chloride"; known`},
+		{"", 0.3, 0, `unknown solute ""; known`},
 		{"CaCl", 0.2, 0, `unknown solute "CaCl", did you mean "CaCl2"; known solutes: ethylene glycol`},
 		{"brine", 0.3, 0, `unknown solute "brine"; known`},
 		{"ethylene glycol", 0.61, 0, "mass fraction 0.61"},
@@ -102,7 +105,7 @@ func TestNames(t *testing.T) {
 	}
 	taken := make(map[string]string)
 	for _, s := range solutes {
-		for _, n := range append([]string{s.name}, s.aliases...) {
+		for _, n := range s.names() {
 			if other, ok := taken[plain(n)]; ok {
 				t.Errorf("%q names both %s and %s", n, other, s.name)
 			}

@@ -3,6 +3,7 @@ package aqueous
 import (
 	"fmt"
 	"slices"
+	"strconv"
 	"strings"
 
 	"heatreeve/thermo"
@@ -93,21 +94,40 @@ func (s *solute) mix(name string, x, u float64) *mixture {
 }
 
 func lookup(name string) (*solute, error) {
-	var known []string
 	for k := range solutes {
-		s := &solutes[k]
-		for _, n := range append([]string{s.name}, s.aliases...) {
+		for _, n := range solutes[k].names() {
 			if plain(n) == plain(name) {
-				return s, nil
+				return &solutes[k], nil
 			}
-			known = append(known, n)
 		}
 	}
 	hint := ""
-	if guess := near.Names(name, known); len(guess) > 0 {
-		hint = fmt.Sprintf(", did you mean %q", guess[0])
+	if guess := meant(name); len(guess) > 0 {
+		hint = ", did you mean " + strings.Join(guess, " or ")
 	}
 	return nil, fmt.Errorf("unknown solute %q%s; known solutes: %s", name, hint, strings.Join(Solutes(), ", "))
+}
+
+func (s *solute) names() []string { return append([]string{s.name}, s.aliases...) }
+
+// meant returns, quoted, the solutes of which the unknown name is a part, such as
+// "glycol", or else the name that it is nearest to.
+func meant(name string) []string {
+	var known, holding []string
+	for k := range solutes {
+		known = append(known, solutes[k].names()...)
+		if p := plain(name); len(p) > 3 && strings.Contains(plain(solutes[k].name), p) {
+			holding = append(holding, strconv.Quote(solutes[k].name))
+		}
+	}
+	if len(holding) > 0 {
+		return holding
+	}
+	guess := near.Names(name, known)
+	if len(guess) == 0 {
+		return nil
+	}
+	return []string{strconv.Quote(guess[0])}
 }
 
 // plain is a name without regard to case, spaces, hyphens and underscores.

@@ -16,7 +16,8 @@ import (
 // as well, the figure is smaller: at 60 % by mass by 0.7 % to 1.3 % of volume for the
 // glycols, by up to 2.4 % for the alcohols. Where it matters, give the mass
 // fraction. The conversion tables of ASHRAE (10 to 50 vol %) are met within 0.3 %
-// of volume, closer than by the other count; that of OIML for ethanol within 0.02 %.
+// of volume, closer than by the other count; that of OIML for
+// ethanol (from memory) within 0.02 %.
 //
 // Known are the glycols, ethanol, methanol and glycerol; a solid or a gas has no
 // volume of its own to count, and is refused. The uncertainty is a standard
