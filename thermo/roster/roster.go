@@ -4,6 +4,7 @@ package roster
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 	"unicode"
 
@@ -13,10 +14,10 @@ import (
 // longest name that is quoted back in full, in letters.
 const longest = 60
 
-// Find returns the one of names that name stands for. also leads from other
-// names to one of names. what says in the error of an unknown name what was sought, such as
+// Find returns the place among names of the one that name stands for. also leads from
+// other names to one of names. what says in the error of an unknown name what was sought, such as
 // "solid"; the error tells the near names and all of them.
-func Find(what, name string, names []string, also map[string]string) (string, error) {
+func Find(what, name string, names []string, also map[string]string) (int, error) {
 	sought := fold(name)
 	known := make(map[string]string, len(names)+len(also))
 	for other, n := range also {
@@ -26,9 +27,11 @@ func Find(what, name string, names []string, also map[string]string) (string, er
 		known[fold(n)] = n
 	}
 	if n, ok := known[sought]; ok {
-		return n, nil
+		if k := slices.Index(names, n); k >= 0 {
+			return k, nil
+		}
 	}
-	return "", fmt.Errorf("unknown %s %q%s; known: %s", what, clip(name), hint(sought, known, names), strings.Join(names, ", "))
+	return 0, fmt.Errorf("unknown %s %q%s; known: %s", what, clip(name), hint(sought, known, names), strings.Join(names, ", "))
 }
 
 // hint names those of names that are near the folded name, in their own order.

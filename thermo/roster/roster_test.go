@@ -7,7 +7,7 @@ import (
 
 var (
 	names = []string{"carbon steel", "stainless steel 304", "aluminium", "lead"}
-	also  = map[string]string{"aluminum": "aluminium", "steel": "carbon steel"}
+	also  = map[string]string{"aluminum": "aluminium", "steel": "carbon steel", "gold": "Au"}
 )
 
 func TestFind(t *testing.T) {
@@ -15,8 +15,8 @@ func TestFind(t *testing.T) {
 		"carbon steel": "carbon steel", "Carbon-Steel": "carbon steel", " CARBONSTEEL ": "carbon steel", "carbon_steel": "carbon steel",
 		"carbon – steel": "carbon steel", "steel": "carbon steel", "Aluminum": "aluminium", "stainless-steel-304": "stainless steel 304",
 	} {
-		if got, err := Find("solid", written, names, also); err != nil || got != want {
-			t.Errorf("Find(%q) = %q, %v; want %q", written, got, err, want)
+		if got, err := Find("solid", written, names, also); err != nil || names[got] != want {
+			t.Errorf("Find(%q) = %d, %v; want that of %q", written, got, err, want)
 		}
 	}
 }
@@ -27,11 +27,12 @@ func TestFindAnswersUnknown(t *testing.T) {
 		"carbn steel":           `unknown solid "carbn steel", did you mean "carbon steel"` + all,
 		"alumnum":               `unknown solid "alumnum", did you mean "aluminium"` + all,
 		"":                      `unknown solid ""` + all,
+		"gold":                  `unknown solid "gold"` + all, // leads to what is not listed
 		"helium":                `unknown solid "helium"` + all,
 		strings.Repeat("é", 99): `unknown solid "` + strings.Repeat("é", 60) + `..."` + all,
 	} {
 		if got, err := Find("solid", written, names, also); err == nil || err.Error() != want {
-			t.Errorf("Find(%q) = %q, %v; want error %s", written, got, err, want)
+			t.Errorf("Find(%q) = %d, %v; want error %s", written, got, err, want)
 		}
 	}
 }

@@ -21,7 +21,6 @@
 package solid
 
 import (
-	"fmt"
 	"math"
 
 	"heatreeve/thermo"
@@ -81,16 +80,12 @@ var also = map[string]string{
 // New returns the solid of that name, in any case, with spaces or hyphens. The error of
 // an unknown name tells the near ones and all of them.
 func New(name string) (thermo.Fluid, error) {
-	known, err := roster.Find("solid", name, Names(), also)
+	k, err := roster.Find("solid", name, Names(), also)
 	if err != nil {
 		return nil, err
 	}
-	for _, m := range makers() {
-		if d := m.make(); d.name == known {
-			return d.solid()
-		}
-	}
-	return nil, fmt.Errorf("solid %q is listed but not made", known)
+	d := makers()[k].make()
+	return d.solid()
 }
 
 // solid is a table or polynomial with an uncertainty of its own.
