@@ -2,8 +2,8 @@ package helmholtz
 
 import "math"
 
-// curve is an auxiliary equation of the saturation line in θ = 1 − T/curve.T.
-// It comes beside an equation of state to start its solution.
+// curve is an auxiliary equation of the saturation line in θ = 1 − T/curve.T. It
+// comes beside an equation of state to start its solution.
 type curve struct {
 	form     curveForm
 	scale, T float64

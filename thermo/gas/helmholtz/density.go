@@ -2,13 +2,13 @@ package helmholtz
 
 import "math"
 
-// Limits of the search for a density. A Newton step below near changes the
-// density by no more than near² beyond it, times the curvature of the isotherm.
+// Limits of the search for a density. After a step of near, about near² is left,
+// which the sums of the properties show and take away.
 const (
-	near     = 1e-6
+	near     = 5e-5
+	converge = 1e-10
 	rounds   = 80
 	densest  = 5.0 // δ above every state in range
-	converge = 1e-9
 )
 
 // bracket is where the density of a phase is sought: between lo and hi, from
@@ -20,8 +20,8 @@ type bracket struct {
 
 // side tells how to read a point where the pressure falls with density. It is no
 // state: below the critical temperature it lies above a gas and below a liquid.
-// Above, only an equation's small waves near its critical point are left, and
-// the pressure alone decides.
+// Above, only an equation's small waves near its critical point are left, and the
+// pressure alone decides.
 type side uint8
 
 const (
@@ -39,9 +39,9 @@ func (s side) tooThin(f, slope float64) bool {
 	return s == denser
 }
 
-// density solves δ(1 + δφ_δ) = q within a bracket by Newton's method, halving
-// the bracket where a step would leave it. ok is false where the phase has no
-// such state.
+// density solves δ(1 + δφ_δ) = q within a bracket by Newton's method, halving the
+// bracket where a step would leave it. ok is false where the phase has no such
+// state.
 func (e *equation) density(iso *isotherm, q float64, b bracket) (delta float64, ok bool) {
 	delta = min(max(b.start, b.lo), b.hi)
 	for range rounds {

@@ -16,9 +16,9 @@ const (
 	maxDegree = 16 // powers of δ
 )
 
-// equation is the residual part φ of a substance, ordered so that one
-// temperature costs its powers of τ once, and one density after that a
-// polynomial in δ for each exp(−δ^l).
+// equation is the residual part φ of a substance, ordered so that one temperature
+// costs its powers of τ once, and one density after that a polynomial in δ for
+// each exp(−δ^l).
 type equation struct {
 	powers       []tauPower
 	groups       []group
@@ -224,11 +224,9 @@ func (e *equation) slopes(iso *isotherm, delta float64) slopes {
 			out.dd += (w*w - float64(b.d) - 2*b.eta*delta*delta) * f
 		}
 	}
-	for i := range e.nonAnalytics {
-		s := e.nonAnalytics[i].sums(delta, iso.tau)
-		out.d += s.d
-		out.dd += s.dd
-	}
+	s := criticalSums(e.nonAnalytics, delta, iso.tau)
+	out.d += s.d
+	out.dd += s.dd
 	return out
 }
 
@@ -244,9 +242,7 @@ func (e *equation) sums(iso *isotherm, delta float64) sums {
 			e.bells[i].add(c, delta, pw[e.bells[i].d], &out)
 		}
 	}
-	for i := range e.nonAnalytics {
-		out.plus(e.nonAnalytics[i].sums(delta, iso.tau))
-	}
+	out.plus(criticalSums(e.nonAnalytics, delta, iso.tau))
 	return out
 }
 

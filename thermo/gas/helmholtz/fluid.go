@@ -68,7 +68,7 @@ func (t *idealTerms) at(tau float64) (u, cv float64) {
 //	p = ρRT(1 + δφ_δ)      u = RTτ(φ°_τ + φ_τ)      cv = −Rτ²(φ°_ττ + φ_ττ)
 //	cp = cv + R(1 + δφ_δ − δτφ_δτ)²/(1 + 2δφ_δ + δ²φ_δδ)
 func (f *fluid) At(T, p float64) (thermo.Properties, error) {
-	if err := f.bounds.Check(f.name, T, p, f.why()); err != nil {
+	if err := f.bounds.Check(f.name, T, p, "range of the equation of state"); err != nil {
 		return thermo.Properties{}, err
 	}
 	if err := f.outside(T, p); err != nil {

@@ -1,6 +1,8 @@
 package helmholtz
 
-// methane holds the equation of state of methane.
+// methane is the equation of state of methane. Its paper's range, 90.6941 to 625
+// K and to 1000 MPa, and its paper's expanded uncertainty, density 0.03 to 0.07
+// %, cp 1 %, are from memory.
 var methane = substance{
 	formula: "CH4", name: "methane",
 	source:    "Setzmann, Wagner, J. Phys. Chem. Ref. Data 20 (1991) 1061",
@@ -8,7 +10,7 @@ var methane = substance{
 	reducingT: 190.564, reducingDensity: 10139.128,
 	criticalT: 190.564, criticalP: 4599200, tripleT: 90.6941,
 	maxT: 625, maxP: 100e6,
-	stated: accuracy{cp: 0.01, density: 0.0007},
+	stated: accuracy{cp: 0.01, ideal: 0.005, density: 0.0007},
 	ideal: idealTerms{
 		logTau: 3.0016,
 		oscillators: []oscillator{

@@ -7,9 +7,9 @@ import (
 )
 
 // The neighbourhood of the critical point that is refused: pressures within these
-// parts of the critical one, at temperatures between these parts of the
-// critical one. There cp grows without bound, and the figures of every equation
-// of state are at their worst.
+// parts of the critical one, at temperatures between these parts of the critical
+// one. There cp grows without bound, and the figures of every equation of state
+// are at their worst.
 const (
 	criticalP1, criticalP2 = 0.97, 1.03
 	criticalT1, criticalT2 = 0.995, 1.005
@@ -32,7 +32,11 @@ func liquid(s *substance) thermo.Fluid {
 	f := newFluid(s)
 	f.name = "liquid " + s.name
 	f.phase = thermo.Liquid
-	f.bounds = thermo.Bounds{MinT: s.tripleT, MaxT: s.criticalT, MinP: max(s.dew.at(1.02*s.tripleT), 1e3), MaxP: min(s.maxP, 50e6)}
+	f.bounds = thermo.Bounds{
+		MinT: s.tripleT, MaxT: s.criticalT,
+		// at lower pressures it boils within a hair of its freezing point
+		MinP: max(s.dew.at(1.02*s.tripleT), 1e3), MaxP: min(s.maxP, 50e6),
+	}
 	return f
 }
 
@@ -43,8 +47,8 @@ func liquid(s *substance) thermo.Fluid {
 // critical pressure at the critical temperature. A liquid ends at its boiling
 // point, +Inf above the critical pressure (the range ends at the critical
 // temperature), and begins at a guard against freezing: the triple temperature
-// plus 0.3 K/MPa.
-// Near the critical pressure both keep 0.5 % off the critical temperature.
+// plus 0.3 K/MPa. Near the critical pressure both keep 0.5 % off the critical
+// temperature.
 func (f *fluid) Span(p float64) (lo, hi float64) {
 	if f.phase == thermo.Gas {
 		return f.begin(p), math.Inf(1)
@@ -118,17 +122,14 @@ func (f *fluid) refusal(T, bound float64, why string) error {
 	return &thermo.RangeError{Fluid: f.name, Quantity: "temperature", Value: T, Bound: bound, Below: T < bound, Why: why}
 }
 
-// lost is the error of a state where the equation has no density of this phase.
+// lost is the error of a state where the equation has no density of this phase,
+// which no state in range has shown.
 func (f *fluid) lost(T float64) error {
 	return f.refusal(T, f.criticalT, "the equation of state has no density of this phase here")
 }
 
-func (f *fluid) why() string {
-	return "range of the equation of state"
-}
-
-// bracket is where to seek the density at T. Below the critical temperature it
-// is bounded by the density at saturation, with a margin for the error of the
+// bracket is where to seek the density at T. Below the critical temperature it is
+// bounded by the density at saturation, with a margin for the error of the
 // auxiliary equations; at the critical temperature the two meet.
 func (f *fluid) bracket(iso *isotherm, T, q float64) bracket {
 	if f.phase == thermo.Gas {
@@ -136,7 +137,7 @@ func (f *fluid) bracket(iso *isotherm, T, q float64) bracket {
 		if T >= f.dew.T {
 			return bracket{hi: densest, start: start, side: single}
 		}
-		return bracket{hi: 1.05 * f.vapour.at(T) / f.reducingDensity, start: start, side: thinner}
+		return bracket{hi: 1.15 * f.vapour.at(T) / f.reducingDensity, start: start, side: thinner}
 	}
 	d := f.liquid.at(T) / f.reducingDensity
 	return bracket{lo: 0.97 * d, hi: densest, start: d, side: denser}

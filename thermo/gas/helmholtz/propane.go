@@ -1,6 +1,8 @@
 package helmholtz
 
-// propane holds the equation of state of propane.
+// propane is the equation of state of propane. Its paper's range, 85.525 to 650 K
+// and to 1000 MPa, and its paper's expanded uncertainty, density 0.01 to 0.03 %,
+// cp 0.5 %, are from memory.
 var propane = substance{
 	formula: "C3H8", name: "propane",
 	source:    "Lemmon, McLinden, Wagner, J. Chem. Eng. Data 54 (2009) 3141",
@@ -8,7 +10,7 @@ var propane = substance{
 	reducingT: 369.89, reducingDensity: 5000,
 	criticalT: 369.89, criticalP: 4251200, tripleT: 85.525,
 	maxT: 650, maxP: 100e6,
-	stated: accuracy{cp: 0.005, density: 0.0003},
+	stated: accuracy{cp: 0.005, ideal: 0.005, density: 0.0003},
 	ideal: idealTerms{
 		logTau: 3,
 		oscillators: []oscillator{

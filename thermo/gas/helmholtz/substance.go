@@ -18,9 +18,11 @@ type substance struct {
 	vapour, liquid             curve // densities at saturation, mol/m³
 }
 
-// accuracy is the expanded uncertainty (k = 2) of single-phase states off the
-// critical region, as fractions.
-type accuracy struct{ cp, density float64 }
+// accuracy is the expanded uncertainty (k = 2) of states off the critical region,
+// as fractions: cp and density as the papers have it, the larger where a paper
+// divides its range; ideal is that of cp of the dilute gas, by how far the ideal
+// part is from other tables.
+type accuracy struct{ cp, ideal, density float64 }
 
 // idealTerms is the ideal part of the Helmholtz energy,
 //
@@ -36,8 +38,8 @@ type idealTerms struct {
 
 type idealPower struct{ n, t float64 }
 
-// oscillator is a Planck-Einstein function where d = −1. Air has one with
-// n ln(2/3 + exp(θτ)) = n ln(1 + 2/3·exp(−θτ)) + nθτ.
+// oscillator is a Planck-Einstein function where d = −1. Air has one with n
+// ln(2/3 + exp(θτ)) = n ln(1 + 2/3·exp(−θτ)) + nθτ.
 type oscillator struct{ n, theta, d float64 }
 
 // power is n δ^d τ^t exp(−δ^l), without the exponential where l = 0.
