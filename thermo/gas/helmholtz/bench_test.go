@@ -1,6 +1,7 @@
 package helmholtz
 
 import (
+	"fmt"
 	"testing"
 
 	"heatreeve/thermo"
@@ -23,9 +24,10 @@ func states(b *testing.B, at func(f *fluid) func(T, p float64) thermo.Properties
 		formula string
 		T, p    float64
 	}{
-		{"N2", 300, 1e6}, {"dry-air", 320, 8e5}, {"CO2", 320, 2e6}, {"CO2", 310, 8e6}, {"H2", 300, 3e7}, {"C3H8", 300, 5e5}, {"NH3", 320, 1e6},
+		{"N2", 300, 1e6}, {"dry-air", 320, 8e5}, {"CO2", 320, 2e6}, {"CO2", 310, 8e6},
+		{"H2", 300, 3e7}, {"He", 300, 2e6}, {"C3H8", 300, 5e5}, {"NH3", 320, 1e6},
 	} {
-		b.Run(c.formula, func(b *testing.B) {
+		b.Run(fmt.Sprintf("%s/%gK/%gMPa", c.formula, c.T, c.p/1e6), func(b *testing.B) {
 			f, ok := New(c.formula)
 			if !ok {
 				f = Air()

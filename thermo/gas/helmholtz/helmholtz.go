@@ -90,11 +90,25 @@ func New(formula string) (f thermo.Fluid, ok bool) {
 // Air returns dry air.
 func Air() thermo.Fluid { return gas(&dryAir) }
 
-// Liquid returns the liquid of a formula, for all of [Formulas] but helium.
+// Liquids returns the formulas that Liquid knows: all but helium.
+func Liquids() []string {
+	var out []string
+	for _, s := range pure {
+		if s.hasLiquid() {
+			out = append(out, s.formula)
+		}
+	}
+	return out
+}
+
+// Liquid returns the liquid of a formula, in any case; ok is false for one that is
+// not in [Liquids].
 func Liquid(formula string) (f thermo.Fluid, ok bool) {
 	s, ok := find(formula)
-	if !ok || s == &helium {
+	if !ok || !s.hasLiquid() {
 		return nil, false
 	}
 	return liquid(s), true
 }
+
+func (s *substance) hasLiquid() bool { return s.liquid.form != 0 }

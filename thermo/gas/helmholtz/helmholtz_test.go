@@ -17,9 +17,13 @@ func all(t testing.TB) []thermo.Fluid {
 			t.Fatalf("New(%q): not known", formula)
 		}
 		out = append(out, f)
-		if l, ok := Liquid(formula); ok {
-			out = append(out, l)
+	}
+	for _, formula := range Liquids() {
+		f, ok := Liquid(formula)
+		if !ok {
+			t.Fatalf("Liquid(%q): not known", formula)
 		}
+		out = append(out, f)
 	}
 	return out
 }

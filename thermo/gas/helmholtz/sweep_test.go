@@ -3,6 +3,7 @@ package helmholtz
 import (
 	"errors"
 	"math"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -63,6 +64,58 @@ func slopeError(f thermo.Fluid, T, p float64) (float64, error) {
 		g[k] = (above.Enthalpy - below.Enthalpy) / ((T + d) - (T - d))
 	}
 	return math.Abs((4*g[1]-g[0])/3/s.Cp - 1), nil
+}
+
+// A phase is one branch of the isotherm: its density rises with pressure without
+// a jump. Near the critical temperature a step of a fiftieth in pressure
+// may still triple the density.
+func TestDensityRises(t *testing.T) {
+	for _, f := range all(t) {
+		b := f.Bounds()
+		for i := 1; i < 100; i++ {
+			T := b.MinT + (b.MaxT-b.MinT)*math.Pow(float64(i)/100, 3)
+			last := 0.0
+			for p := max(b.MinP, b.MaxP*1e-6); p < b.MaxP; p *= 1.02 {
+				s, err := f.At(T, p)
+				if err != nil {
+					last = 0
+					continue
+				}
+				if !(s.Density > last) || last > 0 && s.Density > 3*last {
+					t.Fatalf("%s %g K, %g Pa: density %g after %g kg/m³", f.Name(), T, p, s.Density, last)
+				}
+				last = s.Density
+			}
+		}
+	}
+}
+
+// Whatever the input, there is either a whole state or an error.
+func TestAnyInput(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 3))
+	fluids := all(t)
+	for n := range 100000 {
+		f := fluids[n%len(fluids)]
+		b := f.Bounds()
+		T, p := b.MaxT*1.1*random.Float64(), b.MaxP*1.1*math.Exp(-20*random.Float64())
+		switch random.IntN(10) {
+		case 0:
+			T = math.Float64frombits(random.Uint64())
+		case 1:
+			p = math.Float64frombits(random.Uint64())
+		}
+		s, err := f.At(T, p)
+		var e *thermo.RangeError
+		if err != nil && !errors.As(err, &e) {
+			t.Fatalf("%s %g K, %g Pa: %v", f.Name(), T, p, err)
+		}
+		if err == nil && !(s.Density > 0 && s.Cv > 0 && s.Cp >= s.Cv && !math.IsInf(s.Cp, 0) && !math.IsNaN(s.Enthalpy+s.InternalEnergy)) {
+			t.Fatalf("%s %g K, %g Pa: %+v", f.Name(), T, p, s)
+		}
+		if err != nil && strings.HasPrefix(e.Why, "the equation of state has no density") {
+			t.Fatalf("%s %g K, %g Pa: no density found", f.Name(), T, p)
+		}
+	}
 }
 
 // The neighbourhood of the critical point is refused with its reason, and what
