@@ -5,7 +5,6 @@ import "heatreeve/thermo"
 const (
 	whyBoils     = `saturation lies there: in between water boils and its heat is latent; beyond, the fluid to ask for is "steam"`
 	whyCondenses = `saturation lies there: in between steam condenses and its heat is latent; beyond, the fluid to ask for is "water"`
-	whyNotLiquid = `critical pressure: down from there, at this temperature, the fluid to ask for is "steam"`
 	whyNotGas    = `critical temperature: down from there, at this pressure, the fluid to ask for is "water", which does not boil`
 	whyCritical  = "critical point, where cp is infinite"
 )
@@ -19,7 +18,7 @@ func liquidRefusal(T, p float64) error {
 	case p > criticalPressure:
 		return nil
 	case T > criticalTemperature:
-		return &thermo.RangeError{Fluid: "water", Quantity: "pressure", Value: p, Bound: criticalPressure, Below: true, Why: whyNotLiquid}
+		return &thermo.RangeError{Fluid: "water", Quantity: "temperature", Value: T, Bound: saturationTemperature(p), Why: whyBoils}
 	}
 	if s := saturationPressure(T); p < s {
 		return &thermo.RangeError{Fluid: "water", Quantity: "pressure", Value: p, Bound: s, Below: true, Why: whyBoils}

@@ -67,10 +67,10 @@ func region1(T, p float64) thermo.Balance {
 func (w *powers1) balance(T, tau float64) thermo.Balance {
 	t := tau * w.r
 	return thermo.Balance{
-		Enthalpy: gasConstant * region1Temperature * w.r * w.sum(&region1Weights.j),
-		Cp:       -gasConstant * t * t * w.sum(&region1Weights.jj),
+		Enthalpy: gasConstant * region1Temperature * w.r * w.byTau(&region1Weights.j),
+		Cp:       -gasConstant * t * t * w.byTau(&region1Weights.jj),
 		// 7.1 − π falls as π rises: a derivative by π changes the sign.
-		Density: -region1Pressure * w.x / (gasConstant * T * w.sum(&region1Weights.i)),
+		Density: -region1Pressure * w.x / (gasConstant * T * w.byPi(&region1Weights.i)),
 	}
 }
 
@@ -81,8 +81,8 @@ func region1All(T, p float64) thermo.Properties {
 	w.fill(region1PiShift-p*(1/region1Pressure), tau-region1TauShift)
 	b := w.balance(T, tau)
 	x := p / (region1Pressure * w.x)
-	d := p/(gasConstant*T*b.Density) + x*tau*w.r*w.sum(&region1Weights.ij)
-	return complete(b, p, b.Cp+gasConstant*d*d/(x*x*w.sum(&region1Weights.ii)))
+	d := p/(gasConstant*T*b.Density) + x*tau*w.r*w.byPi(&region1Weights.ij)
+	return complete(b, p, b.Cp+gasConstant*d*d/(x*x*w.byPi(&region1Weights.ii)))
 }
 
 // powers1 are the powers of x = 7.1 − π, y = τ − 1.222, r = 1/y and z = x/y
@@ -122,10 +122,22 @@ func (w *powers1) fill(x, y float64) {
 	w.tail = w.z8 * w.z8 * z4 * w.z * w.r9 // x²¹ y⁻³⁰
 }
 
-// sum returns Σ n x^I y^J over the 34 lines of table 2, with the factors n; one
-// statement for each I, those above 5 together.
-func (w *powers1) sum(n *lines) float64 {
-	s0 := w.r2*(n[0]+n[1]*w.y) + n[2] + w.y*n[3] + w.y2*(n[4]+n[5]*w.y) + w.y2*w.y2*(n[6]+w.y*n[7])
+// byTau returns Σ n x^I y^J over the lines of table 2 with J ≠ 0, with the
+// factors n; one statement for each I, those above 5 together.
+func (w *powers1) byTau(n *lines) float64 {
+	s0 := w.r2*(n[0]+n[1]*w.y) + w.y*n[3] + w.y2*(n[4]+n[5]*w.y) + w.y2*w.y2*(n[6]+w.y*n[7])
+	s1 := w.r9*(n[8]+n[9]*w.y2) + n[10]*w.r + w.y*(n[12]+w.y2*n[13])
+	s2 := w.r3*n[14] + w.y*n[16] + w.y3*n[17] + w.y17*n[18]
+	s3 := n[19]*w.r2*w.r2 + n[21]*w.y6
+	s4 := w.r2*(n[22]*w.r3+n[23]) + n[24]*w.y10
+	s5 := n[25] * w.r8 * w.x5
+	s8 := w.x8 * w.r6 * (n[26]*w.r5 + n[27])
+	tail := w.tail * (w.y*(n[28]+w.z2*n[29]) + w.z8*(n[30]+w.z*n[31]+w.z2*(n[32]+w.z*n[33])))
+	return s0 + w.x*s1 + w.x2*(s2+w.x*s3+w.x2*s4) + s5 + s8 + tail
+}
+
+// byPi is byTau for the lines with I ≠ 0.
+func (w *powers1) byPi(n *lines) float64 {
 	s1 := w.r9*(n[8]+n[9]*w.y2) + n[10]*w.r + n[11] + w.y*(n[12]+w.y2*n[13])
 	s2 := w.r3*n[14] + n[15] + w.y*n[16] + w.y3*n[17] + w.y17*n[18]
 	s3 := n[19]*w.r2*w.r2 + n[20] + n[21]*w.y6
@@ -133,5 +145,5 @@ func (w *powers1) sum(n *lines) float64 {
 	s5 := n[25] * w.r8 * w.x5
 	s8 := w.x8 * w.r6 * (n[26]*w.r5 + n[27])
 	tail := w.tail * (w.y*(n[28]+w.z2*n[29]) + w.z8*(n[30]+w.z*n[31]+w.z2*(n[32]+w.z*n[33])))
-	return s0 + w.x*s1 + w.x2*(s2+w.x*s3+w.x2*s4) + s5 + s8 + tail
+	return w.x*s1 + w.x2*(s2+w.x*s3+w.x2*s4) + s5 + s8 + tail
 }
