@@ -3,6 +3,7 @@ package water
 import (
 	"testing"
 	"time"
+	"unsafe"
 
 	"heatreeve/thermo"
 )
@@ -15,10 +16,11 @@ var forms = []struct {
 	fluid string
 	T, p  float64
 	naive func(T, p float64) thermo.Balance
-	exact func(T, p float64) (thermo.Balance, error)
+	exact thermo.Fluid
+	box   [4]float64 // K, K, Pa, Pa
 }{
-	{"water", 333.15, 3e5, func(T, p float64) thermo.Balance { return naive1{T, p}.balance() }, thermo.BalanceOf(Liquid())},
-	{"steam", 573.15, 1e6, func(T, p float64) thermo.Balance { return naive2(T, p).balance() }, thermo.BalanceOf(Steam())},
+	{"water", 333.15, 3e5, func(T, p float64) thermo.Balance { return naive1{T, p}.balance() }, Liquid(), [4]float64{273.15, 473.15, 1e5, 25e5}},
+	{"steam", 573.15, 1e6, func(T, p float64) thermo.Balance { return naive2(T, p).balance() }, Steam(), [4]float64{373.15, 673.15, 1e5, 25e5}},
 }
 
 // BenchmarkBalance times the forms side by side, range checks included, and
@@ -36,7 +38,11 @@ func BenchmarkBalance(b *testing.B) {
 			}
 			naive = b.Elapsed() * 1000 / time.Duration(b.N)
 		})
-		b.Run(f.fluid+"/exact", func(b *testing.B) { timeBalance(b, f.exact, f.T, f.p, naive) })
+		b.Run(f.fluid+"/exact", func(b *testing.B) { timeBalance(b, thermo.BalanceOf(f.exact), f.T, f.p, naive) })
+		b.Run(f.fluid+"/table", func(b *testing.B) {
+			x := f.box
+			timeBalance(b, thermo.BalanceOf(Tabulate(f.exact, x[0], x[1], x[2], x[3])), f.T, f.p, naive)
+		})
 	}
 }
 
@@ -81,4 +87,21 @@ func BenchmarkSaturationTemperature(b *testing.B) {
 		sink += saturationTemperature(p)
 		p += 1e-6
 	}
+}
+
+func BenchmarkTabulate(b *testing.B) {
+	for _, f := range forms {
+		b.Run(f.fluid, func(b *testing.B) {
+			var size int
+			for b.Loop() {
+				x := f.box
+				size = Tabulate(f.exact, x[0], x[1], x[2], x[3]).(*table).bytes()
+			}
+			b.ReportMetric(float64(size), "B/table")
+		})
+	}
+}
+
+func (t *table) bytes() int {
+	return len(t.columns)*int(unsafe.Sizeof(column{})) + cap(t.cells)*int(unsafe.Sizeof(cell{}))
 }
