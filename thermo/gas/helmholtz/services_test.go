@@ -215,3 +215,18 @@ func TestAmmoniaAgainstOlderEquation(t *testing.T) {
 		t.Error("further apart than expected")
 	}
 }
+
+// within is a fluid in a smaller box.
+type within struct {
+	thermo.Fluid
+	box thermo.Bounds
+}
+
+func (w within) Bounds() thermo.Bounds { return w.box }
+
+func (w within) At(T, p float64) (thermo.Properties, error) {
+	if err := w.box.Check(w.Name(), T, p, "the box of this test"); err != nil {
+		return thermo.Properties{}, err
+	}
+	return w.Fluid.At(T, p)
+}
