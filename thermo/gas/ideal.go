@@ -73,15 +73,15 @@ type mixture struct {
 	name         string
 	bounds       thermo.Bounds
 	fit          fit
-	trust        trust
+	parts        []part
 	covolume     float64 // m³/mol
 	vapours      []vapour
 	lastDewPoint float64 // K, the highest dew point at any allowed pressure
 }
 
 func newMixture(c composition) *mixture {
-	m := &mixture{polynomials: mix(c.parts), name: c.name, fit: fitOf(c.parts), trust: trustOf(c.parts)}
-	m.bounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: 0, MaxP: m.trust.maxP()}
+	m := &mixture{polynomials: mix(c.parts), name: c.name, fit: fitOf(c.parts), parts: partsOf(c.parts)}
+	m.bounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: 0, MaxP: idealMaxP(c.parts)}
 	for _, p := range c.parts {
 		m.covolume += p.share * critical[p.formula].covolume()
 	}
@@ -96,11 +96,22 @@ func (m *mixture) Phase() thermo.Phase   { return thermo.Gas }
 func (m *mixture) Bounds() thermo.Bounds { return m.bounds }
 func (m *mixture) MolarMass() float64    { return m.molarMass }
 
-// Uncertainty joins that of the polynomials with what the ideal gas may be off by
-// at the pressure. An uncertain composition is not in it.
+// massU is the relative standard uncertainty of a molar mass, and so of the density of an
+// ideal gas.
+const massU = 3e-5
+
+// Uncertainty joins that of the polynomials with what the ideal gas may be off by at
+// the state: the deviations of its parts, weighed by mole fraction, and in the density 1.2 times the
+// volume that the molecules fill, which remains when it is hot. A deviation that may lie
+// anywhere up to its largest value has that value over √3. An uncertain composition is not in it.
 func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
-	cp, density = m.trust.at(T, p, m.covolume)
-	return math.Hypot(cp, m.fit.at(T)), math.Hypot(density, massU)
+	density = 1.2 * m.covolume * p / (thermo.R * T)
+	for k := range m.parts {
+		c, d := m.parts[k].at(T)
+		cp += m.parts[k].share * c * p
+		density += m.parts[k].share * d * p
+	}
+	return math.Hypot(cp/math.Sqrt(3), m.fit.at(T)), math.Hypot(density/math.Sqrt(3), massU)
 }
 
 // Span returns the temperature at which the first component condenses,

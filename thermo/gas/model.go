@@ -54,8 +54,12 @@ func (c composition) by(model Model) (thermo.Fluid, error) {
 	switch model {
 	case Ideal:
 		return newMixture(c), nil
-	case PengRobinson, Best:
+	case PengRobinson:
 		return newCubic(c), nil
+	case Reference:
+		return newReference(c)
+	case Best:
+		return newBest(c), nil
 	}
 	return nil, fmt.Errorf("unknown model %v of a gas; models: %s", model, strings.Join(Models(), ", "))
 }

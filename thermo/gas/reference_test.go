@@ -1,0 +1,200 @@
+package gas
+
+import (
+	"errors"
+	"math"
+	"slices"
+	"strings"
+	"testing"
+
+	"heatreeve/thermo"
+)
+
+// The best model is the reference equation, to the six digits of the rows.
+func TestBestIsReference(t *testing.T) {
+	for _, r := range rows(t, "real-gas.csv") {
+		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
+		got, err := pure(t, s, Best).At(T, p)
+		if err != nil {
+			t.Errorf("%s %g K, %g Pa: %v", s, T, p, err)
+			continue
+		}
+		for column, v := range map[string]float64{"rho_kg_per_m3": got.Density, "cp_J_per_kgK": got.Cp, "cv_J_per_kgK": got.Cv} {
+			if want := r.number(t, column); math.Abs(v/want-1) > 5e-6 {
+				t.Errorf("%s %g K, %g Pa: %s = %.7g, want %.7g (%s)", s, T, p, column, v, want, r["eos"])
+			}
+		}
+	}
+}
+
+// Which gases have a reference equation, and what the others are told.
+func TestReferenceRefuses(t *testing.T) {
+	var got []string
+	for name, fractions := range everyGas() {
+		f, err := New(fractions, Reference)
+		if err == nil {
+			got = append(got, name)
+			continue
+		}
+		if !strings.Contains(err.Error(), "it has to be one of dry air, H2O, N2") || !strings.Contains(err.Error(), "best, peng-robinson, ideal") {
+			t.Errorf("%s: %v, %v", name, f, err)
+		}
+	}
+	slices.Sort(got)
+	if want := "Ar C2H6 C3H8 C4H10 CH4 CO CO2 H2 H2O He N2 NH3 O2 dry air"; strings.Join(got, " ") != want {
+		t.Errorf("reference equations of %q, want %q", got, want)
+	}
+}
+
+// All models stand on one zero of enthalpy: the thin gas at 298.15 K.
+func TestOneZero(t *testing.T) {
+	for name, fractions := range everyGas() {
+		for _, model := range []Model{Best, Ideal, PengRobinson} {
+			got, err := mustNew(t, fractions, model).At(298.15, 1)
+			if err != nil && name == "NO2" {
+				continue // pairs
+			}
+			if err != nil || math.Abs(got.Enthalpy) > 2 {
+				t.Errorf("%s, %v: h = %.2f J/kg, want 0, %v", name, model, got.Enthalpy, err)
+			}
+		}
+	}
+}
+
+// Where Peng and Robinson take over, h, u and density have no step, at any pressure.
+func TestBeyondIsContinuous(t *testing.T) {
+	met := 0
+	for _, s := range Species() {
+		f, ok := pure(t, s, Best).(extended)
+		if !ok {
+			continue
+		}
+		met++
+		for _, p := range []float64{1, 1e5, 1e6, 1e7} {
+			below, err1 := f.At(f.top, p)
+			above, err2 := f.At(f.top*(1+1e-12), p)
+			if err := errors.Join(err1, err2); err != nil {
+				t.Fatal(err)
+			}
+			scale := f.top * below.Cp
+			if math.Abs(above.Enthalpy-below.Enthalpy) > 1e-11*scale || math.Abs(above.InternalEnergy-below.InternalEnergy) > 1e-11*scale ||
+				math.Abs(above.Density/below.Density-1) > 1e-11 {
+				t.Errorf("%s at %g Pa: %+v below, %+v above", s, p, below, above)
+			}
+			uCp, _ := f.Uncertainty(f.top*(1+1e-12), p)
+			if d := math.Abs(above.Cp/below.Cp - 1); d > 2*uCp {
+				t.Errorf("%s at %g Pa: cp steps by %.2f %%, twice the uncertainty is %.2f %%", s, p, 100*d, 200*uCp)
+			}
+		}
+	}
+	if met < 10 {
+		t.Errorf("%d gases go on above their reference equation, want 10 or more", met)
+	}
+}
+
+// What the equation would have said: made to end early, it goes on within twice the uncertainty
+// that it then states.
+func TestBeyondAgainstReference(t *testing.T) {
+	for s, top := range map[string]float64{"N2": 500, "O2": 500, "Ar": 500, "CO2": 500, "CO": 300, "CH4": 300, "C2H6": 420, "C3H8": 500, "H2": 300, "He": 300, "NH3": 550, "air": 500} {
+		f := pure(t, s, Best)
+		full := f
+		if e, ok := f.(extended); ok {
+			full = e.Fluid
+		}
+		early := extended{full, pure(t, s, PengRobinson).(*cubic), top}
+		worst := 0.0
+		for _, p := range []float64{1e5, 1e6, 5e6, 1e7} {
+			start, err := full.At(top, p)
+			if err != nil {
+				t.Fatal(err)
+			}
+			for T := top + 10; T <= full.Bounds().MaxT; T += 25 {
+				got, err1 := early.At(T, p)
+				want, err2 := full.At(T, p)
+				if err := errors.Join(err1, err2); err != nil {
+					t.Fatal(err)
+				}
+				uCp, uDensity := early.Uncertainty(T, p)
+				u0, _ := early.Uncertainty(top+10, p)
+				dCp, dDensity := math.Abs(got.Cp/want.Cp-1), math.Abs(got.Density/want.Density-1)
+				dH := math.Abs((got.Enthalpy-start.Enthalpy)/(want.Enthalpy-start.Enthalpy) - 1)
+				worst = max(worst, dCp/uCp, dH/max(uCp, u0), dDensity/uDensity)
+				if dCp > 2*uCp || dH > 2*max(uCp, u0) || dDensity > 2*uDensity {
+					t.Errorf("%s from %g K, %g K, %g Pa: off by %.3f %% in cp, %.3f %% in Δh and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %%",
+						s, top, T, p, 100*dCp, 100*dH, 100*dDensity, 200*uCp, 200*uDensity)
+				}
+			}
+		}
+		t.Logf("%-4s from %g K: at most %.2f standard uncertainties", s, top, worst)
+	}
+}
+
+// states between the lower end of a fluid's range and 1500 K, at pressures up to 100 bar.
+func states(f thermo.Fluid) (out [][2]float64) {
+	for _, p := range []float64{1e3, 1e5, 119e3, 3e5, 1e6, 2e6, 3e6, 4e6, 5e6, 6e6, 8e6, 1e7} {
+		if p > f.Bounds().MaxP {
+			break
+		}
+		lo, _ := f.Span(p)
+		for T := max(lo, minT) + 0.5; T < 1500; T *= 1.03 {
+			out = append(out, [2]float64{T, p})
+		}
+	}
+	return out
+}
+
+// The simpler models against the reference equations over the whole of the range in which they are
+// trusted: within twice the uncertainty.
+func TestSimplerModelsAgainstReference(t *testing.T) {
+	for _, model := range []Model{Ideal, PengRobinson} {
+		for _, s := range referenced() {
+			f, ref := pure(t, s, model), pure(t, s, Reference)
+			compared, worst, worstCp, worstDensity := 0, 0.0, 0.0, 0.0
+			for _, st := range states(f) {
+				T, p := st[0], st[1]
+				want, err := ref.At(T, p)
+				if err != nil {
+					continue // hotter or nearer to the dew point than the equation goes
+				}
+				got, err := f.At(T, p)
+				if err != nil {
+					t.Fatal(err)
+				}
+				compared++
+				uCp, uDensity := f.Uncertainty(T, p)
+				dCp, dDensity := math.Abs(got.Cp/want.Cp-1), math.Abs(got.Density/want.Density-1)
+				worst, worstCp, worstDensity = max(worst, dCp/uCp, dDensity/uDensity), max(worstCp, dCp), max(worstDensity, dDensity)
+				if dCp > 2*uCp || dDensity > 2*uDensity {
+					t.Errorf("%v %s %.1f K, %g Pa: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %%",
+						model, s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity)
+				}
+			}
+			t.Logf("%-14v %-7s %3d states: cp within %.2f %%, density within %.2f %%, at most %.2f standard uncertainties", model, s, compared, 100*worstCp, 100*worstDensity, worst)
+			if compared < 50 {
+				t.Errorf("%v %s: %d states compared, want 50 or more", model, s, compared)
+			}
+		}
+	}
+}
+
+func TestReferenceKeepsToItsRange(t *testing.T) {
+	const hot = 900 // K; carbon monoxide ends at 500 K
+	_, err := pure(t, "CO", Reference).At(hot, 1e5)
+	var e *thermo.RangeError
+	if !errors.As(err, &e) || e.Bound != 500 || !strings.Contains(e.Why, "the model best goes on to 1726.85 °C") {
+		t.Errorf("reference: %v", err)
+	}
+	if _, err = pure(t, "CO", Reference).At(hot, 2e7); !errors.As(err, &e) || strings.Contains(e.Why, "goes on") {
+		t.Errorf("reference under pressure: %v", err)
+	}
+	f := pure(t, "CO", Best)
+	if _, err = f.At(hot, 1e5); err != nil {
+		t.Errorf("best: %v", err)
+	}
+	if _, err = f.At(hot, 2e7); !errors.As(err, &e) || e.Bound != 500 || !strings.Contains(e.Why, "only up to 10 MPa") {
+		t.Errorf("best under pressure: %v", err)
+	}
+	if !strings.Contains(f.Source(), "Lemmon, Span") || !strings.Contains(f.Source(), "above 226.85 °C Peng and Robinson") {
+		t.Errorf("source %q", f.Source())
+	}
+}
