@@ -1,0 +1,160 @@
+package oil
+
+import (
+	"fmt"
+	"math"
+
+	"heatreeve/thermo"
+)
+
+// Watson factors of petroleum: aromatic 10, naphthenic 11, paraffinic 12.7 (from memory).
+const (
+	minWatson, maxWatson   = 10.0, 13.0
+	naphthenic, paraffinic = 11.0, 12.7
+	minPetroleumT          = 255.15 // K
+	maxPetroleumT          = 423.15 // K
+	cpHalfWidth            = 0.05   // fraction: correlations agree by chance
+	compressibility        = 1e-9   // 1/Pa, of a liquid petroleum (common practice, no source)
+)
+
+type petroleum struct {
+	name, source string
+	cp           quadratic
+	others       []quadratic // the correlations that cp is held against
+	density15    float64
+	alpha        float64   // 1/K
+	alphas       []float64 // of the other groups that it may belong to
+	maxT         float64
+	ends         string // what maxT is
+	pressureTerm float64
+}
+
+// Petroleum returns the petroleum liquid of a density in kg/m³ at 15 °C, which must lie
+// within the range of its group.
+//
+// watson is its Watson factor, 10 to 13, for the cp of Kesler and Lee up to a reduced
+// temperature of 0.85. With 0 it is not known, and cp is Cragoe's, for specific
+// gravities from 0.75 to 0.96.
+//
+// groupName is the product group of ASTM D1250 (see [Groups]). With "" it is that one of the
+// distillates into which the density falls, and what it would be by the other groups goes into
+// the uncertainty of density.
+func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error) {
+	g, err := groupFor(density15, groupName)
+	if err != nil {
+		return nil, fmt.Errorf("petroleum: %w", err)
+	}
+	f := &petroleum{
+		name: fmt.Sprintf("petroleum %.6g kg/m³", density15), density15: density15, alpha: g.alpha(density15),
+		maxT: maxPetroleumT, ends: "range of ASTM D1250-80",
+	}
+	if groupName == "" {
+		f.alphas = otherAlphas(density15, g)
+	} else {
+		f.name = fmt.Sprintf("%s %.6g kg/m³", g.name, density15)
+	}
+	if err := f.setHeat(g.specificGravity(density15), watson); err != nil {
+		return nil, fmt.Errorf("%s: %w", f.name, err)
+	}
+	f.source += ", density by ASTM D1250-80 for " + g.name
+	f.setPressureTerm()
+	return f, nil
+}
+
+func otherAlphas(rho15 float64, chosen *group) (alphas []float64) {
+	for k := range groups {
+		g := &groups[k]
+		if r := g.rho60(rho15); g != chosen && r >= g.minRho60 && r <= g.maxRho60 {
+			alphas = append(alphas, g.alpha(rho15))
+		}
+	}
+	return alphas
+}
+
+// setHeat chooses the correlation of cp.
+func (f *petroleum) setHeat(sg, watson float64) error {
+	switch {
+	case watson == 0 && !(sg >= cragoeMinSG && sg <= cragoeMaxSG):
+		return fmt.Errorf("specific gravity is %.5g, and Cragoe's cp goes from %g to %g; give the Watson factor", sg, cragoeMinSG, cragoeMaxSG)
+	case watson == 0:
+		f.cp, f.source = cragoe(sg), "cp by Cragoe, NBS Miscellaneous Publication 97 (1929)"
+		for _, kw := range []float64{naphthenic, paraffinic} {
+			f.others = append(f.others, keslerLee(sg, kw), api7D22(sg, kw), fallonWatson(sg, kw))
+		}
+		return nil
+	case !(watson >= minWatson && watson <= maxWatson):
+		return fmt.Errorf("watson factor of %g; it lies from %g to %g, or is 0 where it is not known", watson, minWatson, maxWatson)
+	}
+	f.name += fmt.Sprintf(", Watson %.4g", watson)
+	f.cp, f.source = keslerLee(sg, watson), "cp by Kesler and Lee, Hydrocarbon Processing 55(3) (1976)"
+	f.others = []quadratic{cragoe(sg), api7D22(sg, watson), fallonWatson(sg, watson)}
+	if limit := keslerLeeReduced * criticalTemperature(sg, watson); limit < f.maxT {
+		f.maxT, f.ends = limit, "reduced temperature of 0.85, where Kesler and Lee's cp ends"
+	}
+	if f.maxT <= minPetroleumT {
+		return fmt.Errorf("a Watson factor of %g makes it so light that it has a reduced temperature of %g at %.4g °C already", watson, keslerLeeReduced, f.maxT-zeroC)
+	}
+	return nil
+}
+
+// setPressureTerm works v − T dv/dT in the middle of the range: with
+// ρ = ρ15 exp(−x (1 + 0.8 x)), x = α (T − 15 °C), dv/dT is v α (1 + 1.6 x).
+func (f *petroleum) setPressureTerm() {
+	T := (minPetroleumT + f.maxT) / 2
+	x := f.alpha * (T - fifteenC)
+	f.pressureTerm = (1 - T*f.alpha*(1+1.6*x)) / (f.density15 * correction(f.alpha, T-fifteenC))
+}
+
+func (f *petroleum) Name() string        { return f.name }
+func (f *petroleum) Source() string      { return f.source }
+func (f *petroleum) Phase() thermo.Phase { return thermo.Liquid }
+
+// MolarMass is 0: it is not known.
+func (f *petroleum) MolarMass() float64 { return 0 }
+
+func (f *petroleum) Bounds() thermo.Bounds {
+	return thermo.Bounds{MinT: minPetroleumT, MaxT: f.maxT, MaxP: maxPressure}
+}
+
+// Span has no ends: neither pour point nor boiling point of a cut is modelled.
+func (f *petroleum) Span(float64) (lo, hi float64) { return 0, math.Inf(1) }
+
+func (f *petroleum) At(T, p float64) (thermo.Properties, error) {
+	if err := f.Bounds().Check(f.name, T, p, f.why(T)); err != nil {
+		return thermo.Properties{}, err
+	}
+	cp, rho := f.cp.at(T), f.density15*correction(f.alpha, T-fifteenC)
+	h := f.cp.integral(T) - f.cp.integral(fifteenC) + (p-referencePressure)*f.pressureTerm
+	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cp, Density: rho}, nil
+}
+
+func (f *petroleum) why(T float64) string {
+	if T > f.maxT {
+		return f.ends
+	}
+	return "range of ASTM D1250-80"
+}
+
+// Uncertainty of cp takes the widest of the other three correlations' deviations at T, but at
+// least 5 %, for the half-width of a rectangle, u = half-width/√3. Where the Watson
+// factor is not known, they are worked for 11 and for 12.7.
+//
+// That of density is the root sum of squares of three: the precision of the volume
+// correction, at 95 % 0.05 % up to 38 °C and 0.1 % more for every 28 K above (ASTM
+// D1250-80, from memory), halved; as rectangles the widest deviation of the other groups where none was
+// named; and the compression from 1 atm that is left out, 1e-9 a pascal. The
+// density at 15 °C is taken for exact.
+func (f *petroleum) Uncertainty(T, p float64) (cp, density float64) {
+	half, at := cpHalfWidth, f.cp.at(T)
+	for k := range f.others {
+		half = max(half, math.Abs(f.others[k].at(T)/at-1))
+	}
+	var other float64
+	for _, a := range f.alphas {
+		other = max(other, math.Abs(correction(a, T-fifteenC)/correction(f.alpha, T-fifteenC)-1))
+	}
+	const hundredF, fiftyF = 310.93, 27.78 // K
+	precision := (0.0005 + 0.001*max(0, T-hundredF)/fiftyF) / 2
+	compressed := compressibility * math.Abs(p-referencePressure)
+	return half / math.Sqrt(3), math.Sqrt(precision*precision + (other*other+compressed*compressed)/3)
+}
