@@ -239,6 +239,11 @@ func TestDewPoint(t *testing.T) {
 		{"propane", map[string]float64{"C3H8": 1}, 101325, 231.04, 1.5, "normal boiling point (from memory)"},
 		{"ammonia", map[string]float64{"NH3": 1}, 101325, 239.82, 1.5, "normal boiling point (from memory)"},
 		{"sulfur dioxide", map[string]float64{"SO2": 1}, 101325, 263.1, 1.5, "normal boiling point (from memory)"},
+		{"n-butane", map[string]float64{"C4H10": 1}, 101325, 272.66, 1.5, "normal boiling point (from memory)"},
+		{"n-pentane", map[string]float64{"C5H12": 1}, 101325, 309.21, 1.5, "normal boiling point (from memory)"},
+		{"hydrogen sulfide", map[string]float64{"H2S": 1}, 101325, 212.85, 1.5, "normal boiling point (from memory)"},
+		{"chlorine", map[string]float64{"Cl2": 1}, 101325, 239.2, 1.5, "normal boiling point (from memory)"},
+		{"liquid carbon dioxide", map[string]float64{"CO2": 0.5, "N2": 0.5}, 4e6, 253.65, 1.5, "saturation at 2 MPa, Span and Wagner 1996 (from memory)"},
 		{"carbon dioxide", map[string]float64{"CO2": 1}, 101325, 194.69, 0.1, "sublimation point (from memory)"},
 	} {
 		f := mustNew(t, tt.fractions, Ideal)
@@ -257,5 +262,24 @@ func TestWetIsRefused(t *testing.T) {
 	e := new(thermo.RangeError)
 	if !errors.As(err, &e) || e.Why != "dew or frost point of H2O" || !e.Below {
 		t.Errorf("flue gas at 320 K: %v, want its dew point", err)
+	}
+}
+
+// N2O4 ⇌ 2 NO2 has Kp = 0.15 bar at 25 °C (physical chemistry textbooks, from memory); where the gas is let
+// pass, the dimers add 0.04 R to cp.
+func TestPairing(t *testing.T) {
+	K := func(T float64) float64 { return math.Exp(pairEntropy - pairHeat/T) } // bar
+	if k := K(298.15); math.Abs(k-0.15) > 0.005 {
+		t.Errorf("Kp = %.4f bar at 25 °C, want 0.15", k)
+	}
+	for _, tt := range []struct{ x, p float64 }{{1, 1e5}, {1, 1e3}, {0.1, 1e6}, {0.03, 1e5}} {
+		T := pairing(tt.x * tt.x * tt.p)
+		dimers := tt.x * tt.x * tt.p / 1e5 / K(T)
+		if d := dimers * (pairHeat / T) * (pairHeat / T); math.Abs(d-0.04) > 1e-6 {
+			t.Errorf("NO2 of %g at %g Pa and %g K: dimers add %g R, want 0.04", tt.x, tt.p, T, d)
+		}
+	}
+	if T := pairing(1e-6 * 1e-6 * 1e5); T > minT {
+		t.Errorf("1 ppm pairs at %g K", T)
 	}
 }

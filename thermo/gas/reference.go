@@ -18,7 +18,7 @@ func referenceOf(c composition) (f thermo.Fluid, ok bool) {
 	case dryAir:
 		return helmholtz.Air(), true
 	case "H2O":
-		return steamOnZero(), true
+		return newVapour(c.name), true
 	}
 	return helmholtz.New(c.only)
 }
@@ -152,15 +152,17 @@ func (e extended) Uncertainty(T, p float64) (cp, density float64) {
 	return cp, density
 }
 
-// steam is water vapour by IAPWS-IF97, on the zero of enthalpy of the other gases.
-type steam struct {
+// vapourOfWater is steam by IAPWS-IF97, under the name and on the zero of enthalpy of the other
+// gases.
+type vapourOfWater struct {
 	thermo.Fluid
 	balance func(T, p float64) (thermo.Balance, error)
+	name    string
 	zero    float64 // J/kg to be taken off
 }
 
-// steamOnZero has no enthalpy at 298.15 K and no pressure.
-func steamOnZero() thermo.Fluid {
+// newVapour has no enthalpy at 298.15 K and no pressure.
+func newVapour(name string) thermo.Fluid {
 	const p = 1 // Pa
 	f := water.Steam()
 	once, err1 := f.At(zero, p)
@@ -168,22 +170,37 @@ func steamOnZero() thermo.Fluid {
 	if err := errors.Join(err1, err2); err != nil {
 		panic(err) // steam that is none at 298.15 K and 2 Pa
 	}
-	return steam{f, thermo.BalanceOf(f), 2*once.Enthalpy - twice.Enthalpy}
+	return vapourOfWater{f, thermo.BalanceOf(f), name, 2*once.Enthalpy - twice.Enthalpy}
 }
 
-func (s steam) At(T, p float64) (thermo.Properties, error) {
-	at, err := s.Fluid.At(T, p)
-	if err == nil {
-		at.Enthalpy -= s.zero
-		at.InternalEnergy -= s.zero
+func (v vapourOfWater) Name() string { return v.name }
+
+func (v vapourOfWater) At(T, p float64) (thermo.Properties, error) {
+	at, err := v.Fluid.At(T, p)
+	if err != nil {
+		return at, v.own(err)
 	}
-	return at, err
+	at.Enthalpy -= v.zero
+	at.InternalEnergy -= v.zero
+	return at, nil
 }
 
-func (s steam) Balance(T, p float64) (thermo.Balance, error) {
-	at, err := s.balance(T, p)
-	if err == nil {
-		at.Enthalpy -= s.zero
+func (v vapourOfWater) Balance(T, p float64) (thermo.Balance, error) {
+	at, err := v.balance(T, p)
+	if err != nil {
+		return at, v.own(err)
 	}
-	return at, err
+	at.Enthalpy -= v.zero
+	return at, nil
+}
+
+// own puts the name of the gas to a refusal.
+func (v vapourOfWater) own(err error) error {
+	e := new(thermo.RangeError)
+	if !errors.As(err, &e) {
+		return err
+	}
+	named := *e
+	named.Fluid = v.name
+	return &named
 }
