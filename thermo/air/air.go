@@ -15,12 +15,12 @@
 // difference. Air is refused below its dew or frost point; Sensible goes on below it with the
 // same W, as if nothing condensed.
 //
-// The range is -50 °C to 200 °C, 20 kPa to 300 kPa and W up to 0.25. Against the real mixture of
-// IAPWS G8-10 density is off by up to 0.16 % and cp by 0.22 % at atmospheric pressure
-// to 30 °C, 0.48 % to 40 °C and 1.7 % at 60 °C saturated; a constant cp of dry air is
-// 0.5 % low at 100 °C and 1.9 % low at 200 °C. The worst corner, nearly saturated at 90 °C
-// and 280 kPa, is off by 3.6 % in cp and 0.4 % in density. The uncertainty follows these deviations by
-// state. The relations agree with psychrolib to its last digits.
+// The range is -50 °C to 200 °C, 20 kPa to 300 kPa and W up to 0.25. Against the real mixture
+// of IAPWS G8-10 density is off by up to 0.16 % and cp by 0.22 % at atmospheric pressure to 30
+// °C, 0.48 % to 40 °C and 1.7 % at 60 °C saturated; a constant cp of dry air is 0.5 % low at
+// 100 °C and 1.9 % low at 200 °C. The worst corner, nearly saturated at 90 °C and 280 kPa, is
+// off by 3.6 % in cp and 0.4 % in density. The uncertainty follows these deviations by state.
+// The relations agree with psychrolib to its last digits.
 //
 // Not modelled: fog and rain carried along, the latent heat of what condenses, dissolved air and
 // the enhancement of the vapour's pressure by the air about it (0.5 % of W at

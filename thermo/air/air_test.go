@@ -84,8 +84,9 @@ func (w worst) String() string {
 
 func (w worst) note(name string, d float64) { w[name] = max(w[name], math.Abs(d)) }
 
-// TestAgainstTable holds every row to the digits printed (7e-7 relative) for psychrolib, and to the
-// largest deviations from the real mixture that were measured there: 0.16 % in density, 1.69 % in cp.
+// TestAgainstTable holds every row to the digits printed (7e-7 relative) for psychrolib, and to
+// the largest deviations from the real mixture that were measured there: 0.16 % in density,
+// 1.69 % in cp.
 func TestAgainstTable(t *testing.T) {
 	tolerance := worst{"W": 7e-7, "h": 7e-7, "v": 7e-7, "density": 7e-7, "cp": 7e-7, "real density": 1.6e-3, "real cp": 1.69e-2}
 	got := worst{}

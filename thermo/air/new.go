@@ -6,8 +6,8 @@ import (
 	"heatreeve/thermo"
 )
 
-// Moist returns air with the humidity ratio w in kg of vapour per kg of dry air, from 0 to 0.25. Its
-// properties are per kilogram of moist air.
+// Moist returns air with the humidity ratio w in kg of vapour per kg of dry air, from 0 to
+// 0.25. Its properties are per kilogram of moist air.
 func Moist(humidityRatio float64) (thermo.Wet, error) {
 	if err := checkRatio(humidityRatio); err != nil {
 		return nil, err

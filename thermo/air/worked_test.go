@@ -17,9 +17,10 @@ func airOf(t *testing.T, kind thermo.MoistureKind, value, T, p float64) (thermo.
 	return mustMoist(t, w), w
 }
 
-// ASHRAE Handbook Fundamentals, chapter 1, example of air at 40 °C with a wet bulb of 20 °C, read off the chart (from
-// memory): W = 6.5 g/kg, h = 56.7 kJ and v = 0.896 m³ per kg of dry air, dew point 7 °C, relative humidity 14 %. Tolerances
-// are what a chart can be read to; W is the coarsest, as the h of the example goes with a W of 6.4.
+// ASHRAE Handbook Fundamentals, chapter 1, example of air at 40 °C with a wet bulb of 20 °C,
+// read off the chart (from memory): W = 6.5 g/kg, h = 56.7 kJ and v = 0.896 m³ per kg of dry
+// air, dew point 7 °C, relative humidity 14 %. Tolerances are what a chart can be read to; W is
+// the coarsest, as the h of the example goes with a W of 6.4.
 func TestChartExample(t *testing.T) {
 	const T, p = 313.15, 101325
 	f, w := airOf(t, thermo.WetBulb, 293.15, T, p)
@@ -45,8 +46,9 @@ func TestChartExample(t *testing.T) {
 	}
 }
 
-// Air of 30 °C and 45 % metered at 3600 m³/h and cooled to 18 °C, its dew point just below: -14 096.7 W by the relations per
-// kilogram of dry air, of which 1.14247 kg/s flow. The meter's flow taken as moist air must come to the same duty.
+// Air of 30 °C and 45 % metered at 3600 m³/h and cooled to 18 °C, its dew point just below: -14
+// 096.7 W by the relations per kilogram of dry air, of which 1.14247 kg/s flow. The meter's
+// flow taken as moist air must come to the same duty.
 func TestCoolingAtConstantRatio(t *testing.T) {
 	const p = 101325
 	f, w := airOf(t, thermo.RelativeHumidity, 0.45, 303.15, p)
@@ -61,8 +63,9 @@ func TestCoolingAtConstantRatio(t *testing.T) {
 	}
 }
 
-// ASHRAE Handbook Fundamentals, chapter 1, example (from memory): 10 m³/s of air saturated at 2 °C are heated to 40 °C; from the
-// chart 12.76 kg/s of dry air (a volume of 0.784 m³/kg read within 0.0015) and 491 kW, by the relations 490.9 kW.
+// ASHRAE Handbook Fundamentals, chapter 1, example (from memory): 10 m³/s of air saturated at 2
+// °C are heated to 40 °C; from the chart 12.76 kg/s of dry air (a volume of 0.784 m³/kg read
+// within 0.0015) and 491 kW, by the relations 490.9 kW.
 func TestHeatingOfSaturatedAir(t *testing.T) {
 	const p = 101325
 	f, w := airOf(t, thermo.RelativeHumidity, 1, 275.15, p)
