@@ -96,13 +96,13 @@ func TestAgainstPsychrolib(t *testing.T) {
 	dir := t.TempDir()
 	install := exec.Command("npm", "install", "--prefix", dir, "--no-audit", "--no-fund", "psychrolib@1.1.1")
 	if out, err := install.CombinedOutput(); err != nil {
-		t.Fatalf("npm package psychrolib: %v\n%s", err, out)
+		t.Fatalf("npm (Debian's packages npm and nodejs) cannot install psychrolib: %v\n%s", err, out)
 	}
 	node := exec.Command("node", "-e", psychrolibScript)
 	node.Dir = dir
 	states := randomStates(t, 4000)
 	got, wicks := worst{}, 0
-	for k, r := range ask[struct{ Saturation, W, RH, H, V, Rho, Dew, Wick float64 }](t, node, states, "node and psychrolib") {
+	for k, r := range ask[struct{ Saturation, W, RH, H, V, Rho, Dew, Wick float64 }](t, node, states, "node (Debian's package nodejs) with psychrolib") {
 		s := states[k]
 		if s.W < 1e-7 {
 			continue
