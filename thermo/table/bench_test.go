@@ -27,7 +27,7 @@ func BenchmarkTable(b *testing.B) {
 	bench(b, mustNew(b, air(), Options{Phase: thermo.Gas, Pressure: 101325}), 633)
 }
 
-// With vapour pressures, at a pressure where the boiling point has to be worked out.
+// With vapour pressures, in the stretch where the boiling point has to be worked out.
 func BenchmarkBoiling(b *testing.B) {
 	bench(b, mustNew(b, boilingOil(), Options{}), 391)
 }

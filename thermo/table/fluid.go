@@ -41,17 +41,14 @@ func (d *described) Span(p float64) (lo, hi float64) {
 	return d.freezing, d.boiling
 }
 
-// check returns a *[thermo.RangeError] where the fluid has no state at T and p.
+// check returns a *[thermo.RangeError] where T and p lie outside the bounds or the
+// limits as stated.
 func (d *described) check(T, p float64) error {
 	if err := d.bounds.Check(d.name, T, p, d.extent); err != nil {
 		return err
 	}
-	boiling := d.boiling
-	if d.vapour != nil && p <= d.vapour.highest {
-		boiling = d.vapour.boiling(p)
-	}
-	if T < d.freezing || T > boiling {
-		return d.otherPhase(T, boiling)
+	if T < d.freezing || T > d.boiling {
+		return d.otherPhase(T, d.boiling)
 	}
 	return nil
 }

@@ -88,6 +88,10 @@ func (o Options) checkEnthalpies(points []Point) (faults []error) {
 	return faults
 }
 
+// leastRise is by what fraction a vapour pressure rises at least from row to row, so that their
+// logarithms are apart.
+const leastRise = 1e-9
+
 // checkVapour checks the column of vapour pressures.
 func (o Options) checkVapour(points []Point) (faults []error) {
 	last, known := 0.0, 0
@@ -97,8 +101,8 @@ func (o Options) checkVapour(points []Point) (faults []error) {
 			continue
 		case v == 0:
 			faults = append(faults, fmt.Errorf("row %d: no vapour pressure, though row %d has one; only the first rows may lack it", k+1, k))
-		case !positive(v) || !(v > last):
-			faults = append(faults, fmt.Errorf("row %d: vapour pressure of %g Pa does not rise above the %g Pa before it", k+1, v, last))
+		case !positive(v) || !(v > last*(1+leastRise)):
+			faults = append(faults, fmt.Errorf("row %d: vapour pressure of %g Pa does not rise above the %g Pa before it (by 1e-9 of it at least)", k+1, v, last))
 		}
 		last, known = p.VapourPressure, known+1
 	}

@@ -45,6 +45,7 @@ type Point struct {
 type segment struct {
 	enthalpy    float64 // J/kg, at the start
 	cp, density cubic   // in K from the start
+	vapour      float64 // Pa, vapour pressure at the end; 0 where none is known
 }
 
 type tabulated struct {
@@ -59,6 +60,11 @@ func (f *tabulated) At(T, p float64) (thermo.Properties, error) {
 	}
 	k := stretch(f.starts, T)
 	s, t := &f.segments[k], T-f.starts[k]
+	if p < s.vapour { // else it boils beyond this stretch
+		if boiling := f.vapour.boiling(p); T > boiling {
+			return thermo.Properties{}, f.otherPhase(T, boiling)
+		}
+	}
 	return f.properties(T, p, s.cp.at(t), s.density.at(t), s.enthalpy+s.cp.integral(t)), nil
 }
 
@@ -82,7 +88,7 @@ func (f *tabulated) connect(points []Point, enthalpies []float64) {
 	}
 	var h float64
 	for k := range cps {
-		f.segments = append(f.segments, segment{h, cps[k], rhos[k]})
+		f.segments = append(f.segments, segment{h, cps[k], rhos[k], points[k+1].VapourPressure})
 		h += cps[k].integral(T[k+1] - T[k])
 	}
 }

@@ -241,6 +241,7 @@ func TestNewRefuses(t *testing.T) {
 		{"oil", "s", bad(0, Point{T: 300, Cp: 2e6, Density: 900}), Options{}, "row 1: cp of 2e+06 J/(kg K); it must be above zero and at most 1e+06"},
 		{"oil", "s", vapours(0, 10, 0), Options{}, "row 3: no vapour pressure, though row 2 has one"},
 		{"oil", "s", vapours(0, 10, 10), Options{}, "row 3: vapour pressure of 10 Pa does not rise above the 10 Pa before it"},
+		{"oil", "s", vapours(0, 10, 10*(1+1e-12)), Options{}, "row 3: vapour pressure of 10.00000000001 Pa does not rise"},
 		{"oil", "s", vapours(-1, 10, 20), Options{}, "row 1: vapour pressure of -1 Pa"},
 		{"oil", "s", vapours(0, 10, math.NaN()), Options{}, "row 3: vapour pressure of NaN Pa"},
 		{"oil", "s", vapours(0, 0, 10), Options{}, "one vapour pressure makes no curve"},
