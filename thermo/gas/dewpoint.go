@@ -14,27 +14,47 @@ type vapour struct {
 	point   criticalPoint
 }
 
-// vapours are the parts that fall out of the gas above 200 K at some pressure up
-// to maxP in Pa.
-func vapours(parts []component, maxP float64) []vapour {
-	var out []vapour
+// vapours of a mixture, with the dew points up to some pressures, so that most states need none.
+type vapours struct {
+	all  []vapour
+	safe [3]struct{ p, T float64 } // no dew point lies above T up to p
+}
+
+// vapoursOf are the parts that fall out of the gas above 200 K at some pressure up to
+// maxP in Pa.
+func vapoursOf(parts []component, maxP float64) vapours {
+	var vs vapours
 	for _, c := range parts {
 		v := vapour{c.formula, c.share, critical[c.formula]}
 		if v.dewPoint(maxP) > minT {
-			out = append(out, v)
+			vs.all = append(vs.all, v)
 		}
 	}
-	return out
+	for k, p := range [...]float64{min(120e3, maxP), min(1e6, maxP), maxP} {
+		vs.safe[k].p = p
+		vs.safe[k].T, _ = vs.dewPoint(p)
+	}
+	return vs
 }
 
-// dewPointOf returns the highest dew point at p in Pa and whose it is, 0 where there is none.
-func dewPointOf(vs []vapour, p float64) (T float64, formula string) {
+// clear tells that T in K surely lies above the dew point at p in Pa.
+func (vs *vapours) clear(T, p float64) bool {
+	for k := range vs.safe {
+		if s := &vs.safe[k]; p <= s.p {
+			return T >= s.T
+		}
+	}
+	return false
+}
+
+// dewPoint returns the highest dew point at p in Pa and whose it is, 0 where there is none.
+func (vs *vapours) dewPoint(p float64) (T float64, formula string) {
 	if !(p > 0) {
 		return 0, ""
 	}
-	for k := range vs {
-		if d := vs[k].dewPoint(p); d > T {
-			T, formula = d, vs[k].formula
+	for k := range vs.all {
+		if d := vs.all[k].dewPoint(p); d > T {
+			T, formula = d, vs.all[k].formula
 		}
 	}
 	return T, formula

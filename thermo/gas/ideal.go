@@ -70,13 +70,12 @@ func (r *range9) at(T float64) (cp, h float64) {
 // mixture is an ideal gas.
 type mixture struct {
 	polynomials
-	name         string
-	bounds       thermo.Bounds
-	fit          fit
-	parts        []part
-	covolume     float64 // m³/mol
-	vapours      []vapour
-	lastDewPoint float64 // K, the highest dew point at any allowed pressure
+	name     string
+	bounds   thermo.Bounds
+	fit      fit
+	parts    []part
+	covolume float64 // m³/mol
+	vapours  vapours
 }
 
 func newMixture(c composition) *mixture {
@@ -85,8 +84,7 @@ func newMixture(c composition) *mixture {
 	for _, p := range c.parts {
 		m.covolume += p.share * critical[p.formula].covolume()
 	}
-	m.vapours = vapours(c.parts, m.bounds.MaxP)
-	m.lastDewPoint, _ = dewPointOf(m.vapours, m.bounds.MaxP)
+	m.vapours = vapoursOf(c.parts, m.bounds.MaxP)
 	return m
 }
 
@@ -117,7 +115,7 @@ func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
 // Span returns the temperature at which the first component condenses,
 // freezes out or pairs at p, 0 where none does above 200 K, and +Inf.
 func (m *mixture) Span(p float64) (lo, hi float64) {
-	lo, _ = dewPointOf(m.vapours, p)
+	lo, _ = m.vapours.dewPoint(p)
 	return lo, math.Inf(1)
 }
 
@@ -125,8 +123,8 @@ func (m *mixture) At(T, p float64) (thermo.Properties, error) {
 	if err := m.bounds.Check(m.name, T, p, "range of the ideal gas"); err != nil {
 		return thermo.Properties{}, err
 	}
-	if T < m.lastDewPoint {
-		if d, formula := dewPointOf(m.vapours, p); T < d {
+	if !m.vapours.clear(T, p) {
+		if d, formula := m.vapours.dewPoint(p); T < d {
 			return thermo.Properties{}, tooCold(m.name, T, d, dewOf(formula))
 		}
 	}

@@ -283,3 +283,26 @@ func TestPairing(t *testing.T) {
 		t.Errorf("1 ppm pairs at %g K", T)
 	}
 }
+
+// What is passed as clear of every dew point is so.
+func TestClear(t *testing.T) {
+	met := 0
+	for name, fractions := range everyGas() {
+		vs := &mustNew(t, fractions, PengRobinson).(*cubic).vapours
+		for p := 1e2; p <= 10e6; p *= 1.37 {
+			dew, formula := vs.dewPoint(p)
+			if dew == 0 {
+				continue
+			}
+			met++
+			for _, T := range []float64{dew - 1, dew - 1e-6, dew * 0.9} {
+				if vs.clear(T, p) {
+					t.Errorf("%s: %g K is clear at %g Pa, the dew point of %s is %g K", name, T, p, formula, dew)
+				}
+			}
+		}
+	}
+	if met < 500 {
+		t.Errorf("%d states of gases that condense, want 500 or more", met)
+	}
+}

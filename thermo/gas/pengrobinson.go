@@ -10,15 +10,14 @@ const pengRobinson = "Peng and Robinson, Ind. Eng. Chem. Fundam. 15 (1976) 59, k
 
 // cubic is a gas by Peng and Robinson, with the polynomials for its ideal part.
 type cubic struct {
-	name         string
-	ideal        polynomials
-	one          fluid1
-	fit          fit
-	polar        float64 // mole fraction of polar gases
-	dipoles      []part  // the polar gases
-	pairs        float64 // what unlike molecules may add to the error of the residual, as a fraction of it
-	vapours      []vapour
-	lastDewPoint float64 // K, the highest dew point at any allowed pressure
+	name    string
+	ideal   polynomials
+	one     fluid1
+	fit     fit
+	polar   float64 // mole fraction of polar gases
+	dipoles []part  // the polar gases
+	pairs   float64 // what unlike molecules may add to the error of the residual, as a fraction of it
+	vapours vapours
 }
 
 // polar gases are those which hold together by more than size and attraction.
@@ -37,8 +36,7 @@ func newCubic(c composition) *cubic {
 		}
 	}
 	m.pairs = 0.1*(1-same) + 1.6*m.polar*(1-m.polar)
-	m.vapours = vapours(c.parts, cubicBounds.MaxP)
-	m.lastDewPoint, _ = dewPointOf(m.vapours, cubicBounds.MaxP)
+	m.vapours = vapoursOf(c.parts, cubicBounds.MaxP)
 	return m
 }
 
@@ -72,7 +70,7 @@ func (m *cubic) Span(p float64) (lo, hi float64) {
 }
 
 func (m *cubic) limit(p float64) (T float64, formula string) {
-	T, formula = dewPointOf(m.vapours, p)
+	T, formula = m.vapours.dewPoint(p)
 	if c := m.coldest(p); c > T {
 		return c, ""
 	}
@@ -99,7 +97,7 @@ func (m *cubic) check(T, p float64) error {
 	if err := cubicBounds.Check(m.name, T, p, "range of Peng-Robinson"); err != nil {
 		return err
 	}
-	if T >= m.lastDewPoint && T >= warm*m.one.T {
+	if (p <= leastMaxP || T >= warm*m.one.T) && m.vapours.clear(T, p) {
 		return nil
 	}
 	lo, formula := m.limit(p)
