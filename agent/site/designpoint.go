@@ -44,11 +44,28 @@ func (r *reader) checkDesignPoint(stream, design object, l HeatLoad) {
 			s.check(f, l.Stream.Margin)
 		}
 	}
+	checkHumidity(stream, l, pIn)
 	checkDirection(stream, design, l)
 }
 
-// check refuses a state that the fluid does not have, or one so near to boiling
-// that its heat would never be booked.
+// checkHumidity holds a constant humidity to the air that it is of, where that is known.
+func checkHumidity(stream object, l HeatLoad, p float64) {
+	s, T := l.Stream, max(l.Design.Inlet, l.Stream.Inlet.Value)
+	humid, ok := s.Fluid.(thermo.Humid)
+	if !ok || !s.Humidity.Constant() || s.Humidity.Value == 0 || T == 0 || p == 0 {
+		return
+	}
+	if _, err := humid.Carrying(thermo.Moisture{Kind: s.HumidityKind, Value: s.Humidity.Value}, T, p); err != nil {
+		for _, m := range measures {
+			if v, given := stream.get(m.key); given && m.kind == s.HumidityKind {
+				v.fault("%v", err)
+			}
+		}
+	}
+}
+
+// check refuses a state that the fluid does not have, or one so near to saturation
+// that its heat would never be booked. Moist air is not refused below its dew point.
 func (s state) check(f thermo.Fluid, margin float64) {
 	b := f.Bounds()
 	if s.p == 0 {
@@ -58,13 +75,21 @@ func (s state) check(f thermo.Fluid, margin float64) {
 		return
 	}
 	lo, hi := f.Span(s.p)
-	if _, err := f.At(s.T, s.p); err != nil {
+	at := f.At
+	if w, wet := f.(thermo.Wet); wet {
+		at = w.Sensible
+	}
+	if _, err := at(s.T, s.p); err != nil {
 		s.fault("%v; allowed at %s absolute: %s to %s", err, kilopascal(s.p), celsius(max(lo, b.MinT)), celsius(min(hi, b.MaxT)))
 		return
 	}
-	if f.Phase() == thermo.Liquid && s.T > hi-margin {
+	switch {
+	case f.Phase() == thermo.Liquid && s.T > hi-margin:
 		s.fault("%s is within the margin of %.4g K to boiling at %s under %s absolute, where heat is not booked",
 			celsius(s.T), margin, celsius(hi), kilopascal(s.p))
+	case f.Phase() == thermo.Gas && !isMoist(f) && s.T < lo+margin:
+		s.fault("%s is within the margin of %.4g K to the dew point at %s under %s absolute, where heat is not booked",
+			celsius(s.T), margin, celsius(lo), kilopascal(s.p))
 	}
 }
 

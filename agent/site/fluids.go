@@ -35,11 +35,16 @@ type declaration struct {
 var kinds = sync.OnceValue(func() []kind {
 	var ks []kind
 	for _, solute := range aqueous.Solutes() {
-		ks = append(ks, kind{solute, []string{"uncertainty"}, solution(solute)})
+		ks = append(ks, kind{solute, []string{"uncertainty", "by"}, solution(solute)})
 	}
 	return append(ks,
-		kind{"gas", nil, mixture},
+		kind{"gas", []string{"by", "model"}, mixture},
+		kind{"flue gas", []string{"model"}, flueGas},
+		kind{"moist air", nil, moistAir},
+		kind{"food", nil, foodstuff},
+		kind{"petroleum", nil, petroleum},
 		kind{"table", nil, tabled},
+		kind{"polynomial", nil, polynomial},
 	)
 })
 

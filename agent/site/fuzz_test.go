@@ -61,9 +61,9 @@ func checkFigures(t *testing.T, s *Site) {
 			t.Errorf("load %+v", l)
 		}
 		figures = append(figures, st.Margin, st.IdleBelow, d.Duty, d.Allow, d.Inlet, d.Outlet, d.Pressure)
-		for _, source := range []Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure} {
+		for _, source := range []Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure, st.Humidity, st.Coil} {
 			figures = append(figures, source.Value)
-			if source.Tag >= len(s.Tags) || source.Constant() && source.Value <= 0 {
+			if source.Tag >= len(s.Tags) || source.Constant() && source.Value <= 0 && source != nowhere {
 				t.Errorf("load %q: source %+v", l.Name, source)
 			}
 		}

@@ -12,20 +12,30 @@ var keys = map[string][]string{
 	"loads.*": {"stream", "design"},
 	"loads.*.stream": {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes",
 		"relative_humidity", "dew_point", "wet_bulb", "humidity_ratio", "coil", "margin", "idle_below"},
-	"loads.*.design":             {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
-	"fluids.*.table":             {"source", "phase", "points", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range"},
-	"fluids.*.table.uncertainty": {"cp", "density"},
+	"loads.*.design":                  {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
+	"fluids.*.flue gas":               {"fuel", "elements", "excess air", "oxygen", "air humidity"},
+	"fluids.*.flue gas.elements":      {"C", "H", "O", "N", "S", "water", "ash"},
+	"fluids.*.food":                   {"water", "fat", "protein", "carbohydrate", "fibre", "ash"},
+	"fluids.*.petroleum":              {"density", "api gravity", "watson", "group"},
+	"fluids.*.moist air":              {"relative humidity", "dew point", "wet bulb", "humidity ratio", "at", "pressure"},
+	"fluids.*.table":                  append([]string{"points"}, described...),
+	"fluids.*.table.uncertainty":      {"cp", "density"},
+	"fluids.*.polynomial":             append([]string{"cp", "density"}, described...),
+	"fluids.*.polynomial.uncertainty": {"cp", "density"},
 }
+
+// described are the keys of a fluid by figures of its own, beside the figures.
+var described = []string{"source", "phase", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range"}
 
 // Keys lists the keys that each block of a site file may have: "broker",
 // "tags.*", "loads.*.stream" and so on, "" for the top. A star stands for a name
 // that the file gives.
 func Keys() map[string][]string {
-	all := make(map[string][]string, len(keys)+2)
+	all := make(map[string][]string, len(keys)+3)
 	for block, names := range keys {
 		all[block] = slices.Clone(names)
 	}
 	all["fluids.*"] = fluidKeys()
-	all["fluids.*.gas"] = species()
+	all["fluids.*.gas"], all["fluids.*.flue gas.fuel"] = species(), species()
 	return all
 }

@@ -6,20 +6,57 @@ import (
 	"heatreeve/thermo/unit"
 )
 
-func species() []string { return gas.Species() }
+// species are the gases of a mixture by formula, and dry air.
+func species() []string { return append(gas.Species(), "dry air") }
 
-// mixture reads a gas by volume, such as {N2: 71 %, O2: 29 %}.
+// mixture reads a gas by its shares, such as {N2: 71 %, O2: 29 %}. They are by volume,
+// which is by mole, unless by says that they are by mass; model says how the
+// properties are found, the best way for the gas and the state unless given.
 func mixture(_ *reader, d declaration) thermo.Fluid {
 	shares, ok := d.v.shares(species(), "shares by volume, such as N2: 79 %, O2: 21 %")
-	if !ok {
+	byMass, okBy := d.o.byMass()
+	model, okModel := d.o.model()
+	if !ok || !okBy || !okModel {
 		return nil
 	}
-	f, err := gas.New(shares, gas.Ideal)
+	var err error
+	if byMass {
+		shares, err = gas.MoleFractions(shares)
+	}
+	var f thermo.Fluid
+	if err == nil {
+		f, err = gas.New(shares, model)
+	}
 	if err != nil {
 		d.v.fault("%v", err)
 		return nil
 	}
 	return f
+}
+
+func (o object) byMass() (is, ok bool) {
+	v, given := o.get("by")
+	if !given {
+		return false, true
+	}
+	by, ok := v.oneOf("volume", "mole", "mass")
+	return by == "mass", ok
+}
+
+func (o object) model() (gas.Model, bool) {
+	v, given := o.get("model")
+	if !given {
+		return gas.Best, true
+	}
+	s, ok := v.oneOf(gas.Models()...)
+	if !ok {
+		return gas.Best, false
+	}
+	m, err := gas.ParseModel(s)
+	if err != nil {
+		v.fault("%v", err)
+	}
+	return m, err == nil
 }
 
 // shares reads parts of a whole by name; want tells how to write them.

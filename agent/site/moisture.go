@@ -1,6 +1,7 @@
 package site
 
 import (
+	"slices"
 	"strings"
 
 	"go.yaml.in/yaml/v3"
@@ -54,7 +55,7 @@ func (r *reader) moisture(o object, s *Stream) {
 		switch {
 		case !ok:
 		case s.Fluid != nil && !humid:
-			v.fault("is about moist air, and the fluid is %q", s.FluidName)
+			v.fault("goes with the fluid \"moist air\", and the fluid is %q", s.FluidName)
 		case s.HumidityKind != 0:
 			v.fault("is one measure too many; want one of: %s", strings.Join(measureKeys(), ", "))
 		default:
@@ -75,23 +76,17 @@ func (r *reader) moisture(o object, s *Stream) {
 	}
 }
 
-// inUnits holds a ratio to the units that say what it is a ratio of.
+// inUnits holds a tag or constant to the units that say what its ratio is of.
 func (r *reader) inUnits(v value, s Source, symbols []string) {
-	if symbols == nil {
-		return
-	}
-	var u unit.Unit
 	if !s.Constant() {
-		u = r.site.Tags[s.Tag].Unit
+		v.inUnits(r.site.Tags[s.Tag].Unit, symbols)
 	} else if q, err := unit.ParseAs(v.node.Value, unit.Ratio); err == nil {
-		u = q.Unit
+		v.inUnits(q.Unit, symbols)
 	}
-	for _, symbol := range symbols {
-		if u.Symbol == symbol || u.Symbol == "" {
-			return
-		}
-	}
-	if u.Dimension == unit.Ratio {
+}
+
+func (v value) inUnits(u unit.Unit, symbols []string) {
+	if len(symbols) > 0 && u.Dimension == unit.Ratio && !slices.Contains(symbols, u.Symbol) {
 		v.fault("is in %v; want %s", u, strings.Join(symbols, " or "))
 	}
 }

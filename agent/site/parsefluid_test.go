@@ -7,12 +7,25 @@ import (
 	"testing"
 )
 
+// The shares of the mixtures are worked by hand: 23.2 % of 31.999 g/mol beside 76.8 % of
+// 28.013 g/mol; CH4 + 2 O2 with the air that comes along; W of half of the saturation
+// pressure 3.1693 kPa at 25 °C, and of 1.4026 kPa at 12 °C, under 101.325 kPa.
 func TestParseFluid(t *testing.T) {
 	for _, tt := range []struct{ text, name string }{
 		{"water", "water"},
 		{"Propylene glycol 32 %", "propylene glycol 32 %"},
 		{"{propylene glycol: 32 %, uncertainty: 0.6 %}", "propylene glycol 32 %"},
+		{"{propylene glycol: 30 %, by: volume}", "propylene glycol 30 vol %"},
 		{"{gas: {N2: 100 %}}", "nitrogen"},
+		{"{gas: {N2: 76.8 %, O2: 23.2 %}, by: mass, model: ideal}", "gas: {N2: 79.09 %, O2: 20.91 %}"},
+		{"{flue gas: {fuel: {CH4: 100 %}, excess air: 0 %}}", "gas: {N2: 70.68 %, H2O: 18.96 %, CO2: 9.51 %, Ar: 0.8477 %}"},
+		{"{moist air: {humidity ratio: 8 g/kg}}", "moist air 8 g/kg"},
+		{"{moist air: {relative humidity: 50 %, at: 25 °C}}", "moist air 9.881 g/kg"},
+		{"{moist air: {dew point: 12 °C}}", "moist air 8.73 g/kg"},
+		{"{food: {water: 90 %, carbohydrate: 10 %}}", "food: {water: 90 %, carbohydrate: 10 %}"},
+		{"{petroleum: {density: 870 kg/m3}}", "petroleum 870 kg/m³"},
+		{"{petroleum: {density: 0.96 kg/L, watson: 11.4, group: fuel oil}}", "fuel oil 960 kg/m³, Watson 11.4"},
+		{"{polynomial: {source: a sheet, phase: liquid, cp: [1880, 3.6], density: [881, -0.65], range: [20 °C, 300 °C]}}", "fluid"},
 		{"gas: {O2: 100 %}", "oxygen"},
 		{"table:\n  source: a sheet\n  phase: solid\n  points: [[0 °C, 900 J/(kg K), 2000 kg/m3], [100 °C, 950 J/(kg K), 1990 kg/m3]]\n", "fluid"},
 	} {
@@ -74,5 +87,5 @@ func ExampleParseFluid() {
 	fmt.Println(err)
 	// Output:
 	// gas: {N2: 79 %, O2: 21 %}
-	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 20 %"
+	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 20 %"; "%" is by mass, "vol %" by volume
 }

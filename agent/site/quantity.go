@@ -41,3 +41,22 @@ func (v value) duration(lo, hi time.Duration, span string) (time.Duration, bool)
 	s, ok := v.within(lo.Seconds(), hi.Seconds(), span, unit.Duration)
 	return time.Duration(math.Round(s * 1e9)), ok
 }
+
+// bare reads a number without a unit, where there is none to write.
+func (v value) bare() (x float64, ok bool) {
+	if tag := v.node.ShortTag(); tag != "!!int" && tag != "!!float" || v.node.Decode(&x) != nil {
+		v.fault("want a bare number, found %s", v.kind())
+		return 0, false
+	}
+	return x, true
+}
+
+// bareWithin is bare with limits, both allowed; 0 where there is a fault.
+func (v value) bareWithin(lo, hi float64) float64 {
+	x, ok := v.bare()
+	if ok && !(x >= lo && x <= hi) {
+		v.fault("%g is out of range; allowed: %g to %g", x, lo, hi)
+		return 0
+	}
+	return x
+}

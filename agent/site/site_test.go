@@ -11,6 +11,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
 )
 
@@ -111,6 +112,32 @@ func TestParseLoads(t *testing.T) {
 	equal(t, "margin of 9 °F", a.Margin, 5)
 	if d := s.Loads[1].Design; d != (Design{Lasting: 10 * time.Minute}) {
 		t.Errorf("no design block = %+v", d)
+	}
+}
+
+// The humidity of a stream of moist air, by a tag or a constant, and its coil.
+func TestParseHumidity(t *testing.T) {
+	s, err := Parse("plant.yaml", []byte(strings.Replace(plant, "loads:\n", `  RH-1: {topic: a/rh1, unit: "%", accuracy: 2 %}
+loads:
+  coil: {stream: {fluid: moist air, flow: FT-1, inlet: TT-1, outlet: TT-2, pressure: 1 bar, meter_at: inlet, relative_humidity: RH-1, coil: TT-2, gives: heat}}
+  duct: {stream: {fluid: Moist Air, flow: FT-1, inlet: TT-1, outlet: TT-2, pressure: 1 bar, meter_at: inlet, wet_bulb: 18 °C, margin: 2 K, gives: heat}}
+`, 1)))
+	if err != nil {
+		t.Fatal(err)
+	}
+	coil, duct, washers := s.Loads[0].Stream, s.Loads[1].Stream, s.Loads[2].Stream
+	if coil.HumidityKind != thermo.RelativeHumidity || coil.Humidity.Tag != 5 || !coil.HasCoil || coil.Coil.Tag != 1 || coil.Margin != 1 {
+		t.Errorf("coil: %+v", coil)
+	}
+	if duct.HumidityKind != thermo.WetBulb || !duct.Humidity.Constant() || duct.HasCoil || duct.Margin != 2 || duct.FluidName != "moist air" {
+		t.Errorf("duct: %+v", duct)
+	}
+	equal(t, "wet bulb", duct.Humidity.Value, 291.15)
+	if washers.HumidityKind != 0 || washers.HasCoil || !washers.Humidity.Constant() || !washers.Coil.Constant() {
+		t.Errorf("a stream of water has %+v", washers)
+	}
+	if rh := s.Tags[5]; rh.Scale != 0.01 || rh.Min != 0 || rh.Max != 1.02 || rh.Accuracy != (Accuracy{Abs: 0.02}) {
+		t.Errorf("RH-1 = %+v", rh)
 	}
 }
 

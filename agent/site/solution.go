@@ -6,9 +6,9 @@ import (
 	"heatreeve/thermo/unit"
 )
 
-// solution reads a solute in water by mass, such as {propylene glycol: 32 %}.
-// The uncertainty is the standard uncertainty of the strength, in the same
-// percent; without one the strength is taken as exact.
+// solution reads a solute in water, such as {propylene glycol: 32 %, by: volume};
+// without by the share is by mass. The uncertainty is the standard uncertainty of the
+// strength, in the same percent; without one the strength is taken as exact.
 func solution(solute string) func(*reader, declaration) thermo.Fluid {
 	return func(_ *reader, d declaration) thermo.Fluid {
 		x, ok := d.v.quantity(unit.Ratio)
@@ -21,7 +21,17 @@ func solution(solute string) func(*reader, declaration) thermo.Fluid {
 				return nil
 			}
 		}
-		f, err := aqueous.New(solute, x.SI(), u)
+		mix := aqueous.New
+		if v, given := d.o.get("by"); given {
+			by, ok := v.oneOf("mass", "volume")
+			if !ok {
+				return nil
+			}
+			if by == "volume" {
+				mix = aqueous.NewByVolume
+			}
+		}
+		f, err := mix(solute, x.SI(), u)
 		if err != nil {
 			d.v.fault("%v", err)
 			return nil

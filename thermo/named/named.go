@@ -39,6 +39,11 @@ func Lookup(name string) (thermo.Fluid, error) {
 	if w, ok := index().strong[fold(name)]; ok {
 		return nil, fmt.Errorf("%s wants its strength as well: write %q%s", w.name, w.example(), w.hint())
 	}
+	for _, find := range otherwise {
+		if f, err := find(strings.TrimSpace(name)); err == nil {
+			return f, nil
+		}
+	}
 	return nil, &UnknownError{name}
 }
 
@@ -125,13 +130,19 @@ func beginsStrength(s string) bool {
 
 // fold brings a name into the form under which it is found.
 func fold(name string) string {
-	return strings.ToLower(strings.Map(func(r rune) rune {
-		if unicode.IsSpace(r) || unicode.Is(unicode.Pd, r) || r == '_' {
+	return alike.Replace(strings.ToLower(strings.Map(func(r rune) rune {
+		switch {
+		case unicode.IsSpace(r), unicode.Is(unicode.Pd, r), r == '_':
 			return -1
+		case r >= '₀' && r <= '₉':
+			return r - '₀' + '0'
 		}
 		return r
-	}, name))
+	}, name)))
 }
+
+// alike maps spellings of two countries to one.
+var alike = strings.NewReplacer("sulph", "sulf", "vapour", "vapor")
 
 func quoted(names []string) string {
 	qs := make([]string, len(names))

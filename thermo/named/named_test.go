@@ -56,6 +56,13 @@ func TestLookupIsLenient(t *testing.T) {
 		{"nitrogen", "nitrogen"}, {"n2", "nitrogen"}, {"CO2", "carbon dioxide"}, {"Carbon-Dioxide", "carbon dioxide"},
 		{"propylene glycol 32 %", "propylene glycol 32 %"}, {"Propylene Glycol 32%", "propylene glycol 32 %"}, {"propylene-glycol-32 %", "propylene glycol 32 %"},
 		{"propyleneglycol 0.32 kg/kg", "propylene glycol 32 %"}, {"propylene glycol 32 mass %", "propylene glycol 32 %"}, {"propylene glycol 32 % by mass", "propylene glycol 32 %"},
+		{"propylene glycol 30 vol %", "propylene glycol 30 vol %"}, {"ethanol 40 % vol", "ethanol 40 vol %"}, {"Propylene glycol 30 % by volume", "propylene glycol 30 vol %"},
+		{"NaCl 20 %", "sodium chloride 20 %"}, {"CaCl2 20%", "calcium chloride 20 %"}, {"ammonia 20 %", "ammonia 20 %"}, {"ammonia", "ammonia"},
+		{"CO₂", "carbon dioxide"}, {"sulphur dioxide", "sulfur dioxide"}, {"water vapor", "steam"}, {"H₂O", "steam"}, {"butane", "n-butane"},
+		{"liquid NH3", "liquid ammonia"}, {"Liquid Ammonia", "liquid ammonia"},
+		{"moist air", "moist air"}, {"moist air 8 g/kg", "moist air 8 g/kg"}, {"Moist-Air 0.008 kg/kg", "moist air 8 g/kg"},
+		{"milk", "whole milk"}, {"Skimmed milk", "skim milk"}, {"copper", "copper"},
+		{"petroleum 870 kg/m3", "petroleum 870 kg/m³"}, {"Fuel Oil 0.9 kg/L", "fuel oil 900 kg/m³"}, {"terphenyl", "modified terphenyl"}, {"Mineral Oil B", "mineral oil B"}, {"steel", "carbon steel"},
 	} {
 		f, err := Lookup(tt.written)
 		if err != nil || f.Name() != tt.name {
@@ -105,6 +112,8 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"propylene glycol -5 %", []string{"propylene glycol of mass fraction -0.05"}},
 		{"propylene glycol 32 °C", []string{"a unit of temperature"}},
 		{"water 32 %", []string{"water stands for one fluid and takes no strength", `found "32 %"`}},
+		{"calcium chloride 20 vol %", []string{"calcium chloride is not known by volume"}},
+		{"moist air 50 %", []string{"want its humidity ratio in g/kg"}},
 		{strings.Repeat("x", 1000), []string{`xxx..." is not known; known`}},
 	} {
 		f, err := Lookup(tt.name)
@@ -168,5 +177,5 @@ func ExampleLookup() {
 	fmt.Println(err)
 	// Output:
 	// propylene glycol 32 %
-	// propylene glycol wants its strength as well: write "propylene glycol 20 %"
+	// propylene glycol wants its strength as well: write "propylene glycol 20 %"; "%" is by mass, "vol %" by volume
 }

@@ -4,7 +4,6 @@ import (
 	"os"
 	"regexp"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
 
@@ -88,19 +87,6 @@ func TestReadmeNamesTheReasons(t *testing.T) {
 	have = append(have, "crowded") // the engine's own
 	if !slices.Equal(said, have) {
 		t.Errorf("the program has %v,\nthe README lists %v", have, said)
-	}
-}
-
-// The number of worked examples that the README claims is that of the file which a
-// test of thermo runs through.
-func TestReadmeCountsTheWorkedExamples(t *testing.T) {
-	file, err := os.ReadFile("../../../thermo/testdata/worked-examples.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	rows := len(regexp.MustCompile(`(?m)^[A-Z]\d\d,`).FindAll(file, -1))
-	if want := strconv.Itoa(rows) + " worked examples"; !strings.Contains(readme(t), want) {
-		t.Errorf("the README does not say %q", want)
 	}
 }
 
