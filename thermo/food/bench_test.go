@@ -19,8 +19,8 @@ func BenchmarkMilk(b *testing.B) {
 	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
 }
 
-// naive is the same mixture component by component, with math.Pow: h without the
-// pressure term.
+// naive is the same mixture component by component, with math.Pow: h without the pressure
+// term.
 func naive(c Composition, t float64) (h, cp, rho float64) {
 	var v float64
 	for _, s := range c.shares() {

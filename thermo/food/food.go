@@ -1,28 +1,28 @@
 // Package food holds liquid food by its composition: milk, cream, wort, juice.
 //
 // cp and density are the polynomials of Choi and Okos (1986) for water, protein, fat,
-// carbohydrate, fibre and ash, as the ASHRAE Handbook Refrigeration tabulates
-// them, put together by mass for cp and by volume for density, without pores or foam:
+// carbohydrate, fibre and ash, as the ASHRAE Handbook Refrigeration tabulates them, put
+// together by mass for cp and by volume for density, without pores or foam:
 //
 //	cp(T) = Σ x_i cp_i(T),   1/ρ(T) = Σ x_i / ρ_i(T)
 //
-// The range is 0 °C to 150 °C as a liquid: a watery food freezes a little below 0 °C
-// and boils a little above the boiling point of water at its pressure, so that both ends
-// are on the safe side.
+// The range is 0 °C to 150 °C as a liquid: a watery food freezes a little below 0 °C and
+// boils a little above the boiling point of water at its pressure, so that both ends are on
+// the safe side.
 //
-// Found: the water polynomial itself has 2.1 % less cp than IAPWS-IF97 at 0 °C, 1.3 %
-// less at 20 °C, 0.95 % at 60 °C to 95 °C and 1.7 % at 150 °C. The published equations
-// are kept; the deviation goes into the uncertainty. Handbook values of whole and skim
-// milk (cp 3.89 and 3.94 kJ/(kg K), from memory) lie 1.2 % and 0.8 % above ours.
+// Found: the water polynomial itself has 2.1 % less cp than IAPWS-IF97 at 0 °C, 1.3 % less
+// at 20 °C, 0.95 % at 60 °C to 95 °C and 1.7 % at 150 °C. The published equations are kept;
+// the deviation goes into the uncertainty. Handbook values of whole and skim milk (cp 3.89
+// and 3.94 kJ/(kg K), from memory) lie 1.2 % and 0.8 % above ours.
 //
-// The food is taken for incompressible: cv is cp, and the enthalpy keeps its pressure
-// term, that of 60 °C at every temperature so that (∂h/∂T)p is cp and nothing else:
+// The food is taken for incompressible: cv is cp, and the enthalpy keeps its pressure term,
+// that of 60 °C at every temperature so that (∂h/∂T)p is cp and nothing else:
 //
 //	h(T, p) = ∫ cp dT + (p − 101325 Pa) · (v − T dv/dT)
 //
-// Not modelled: freezing and ice, the melting of fat (milk fat takes up some
-// 80 kJ/kg between 0 °C and 40 °C, from memory; in cream that is no small matter),
-// dissolved or entrained gas, and all that cooking changes.
+// Not modelled: freezing and ice, the melting of fat (milk fat takes up some 80 kJ/kg
+// between 0 °C and 40 °C, from memory; in cream that is no small matter), dissolved or
+// entrained gas, and all that cooking changes.
 package food
 
 import (
@@ -52,8 +52,8 @@ type component struct{ cp, density quadratic }
 
 // The components of Y. Choi, M. R. Okos, Effects of temperature and composition on the
 // thermal properties of foods (1986), as tabulated in ASHRAE Handbook Refrigeration,
-// chapter Thermal Properties of Foods: cp in J/(kg K), density in kg/m³, t in °C;
-// -40 °C to 150 °C, water 0 °C to 150 °C.
+// chapter Thermal Properties of Foods: cp in J/(kg K), density in kg/m³, t in °C; -40 °C to
+// 150 °C, water 0 °C to 150 °C.
 var (
 	waterPart    = component{quadratic{4128.9, -0.090864, 0.0054731}, quadratic{997.18, 0.0031439, -0.0037574}}
 	protein      = component{quadratic{2008.2, 1.2089, -0.0013129}, quadratic{1329.9, -0.5184}}
@@ -147,21 +147,21 @@ func (m *mixture) expansion(t float64) (slope float64) {
 	return slope
 }
 
-// deviations are how far the water polynomials are from IAPWS-IF97, as fractions:
-// measured at 1 atm, beyond 100 °C at saturation.
+// deviations are how far the water polynomials are from IAPWS-IF97, as fractions: measured
+// at 1 atm, beyond 100 °C at saturation.
 var deviations = [...]struct{ t, cp, density float64 }{
 	{0, 0.0215, 0.0029}, {5, 0.0182, 0.0029}, {10, 0.0160, 0.0029}, {20, 0.0133, 0.0026}, {40, 0.0108, 0.0011}, {60, 0.0096, 0.0009},
 	{80, 0.0094, 0.0018}, {95, 0.0099, 0.0018}, {120, 0.0118, 0.0012}, {135, 0.0139, 0.0018}, {150, 0.0167, 0.0043},
 }
 
-// Half-widths of what the dry components leave open, as fractions: cp by the errors
-// that Choi and Okos gave for their fits, up to 6 % (from memory); density by that of milk,
-// 0.6 % to 0.7 % above ours at a tenth of solids (from memory).
+// Half-widths of what the dry components leave open, as fractions: cp by the errors that
+// Choi and Okos gave for their fits, up to 6 % (from memory); density by that of milk, 0.6
+// % to 0.7 % above ours at a tenth of solids (from memory).
 const dryCp, dryDensity = 0.06, 0.08
 
 // Uncertainty puts two half-widths together, for water its deviation from IAPWS-IF97 at T,
-// for the rest 6 % of cp and 8 % of density, each by its share of the food's cp or
-// volume, and takes the sum for rectangular: u = half-width/√3.
+// for the rest 6 % of cp and 8 % of density, each by its share of the food's cp or volume,
+// and takes the sum for rectangular: u = half-width/√3.
 func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
 	t := min(max(T-zeroC, 0), maxT-zeroC)
 	k := 1

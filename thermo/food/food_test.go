@@ -83,8 +83,8 @@ func checks(t *testing.T) []check {
 	return out
 }
 
-// Every row within 3e-7, which is the printing. The rows of one dry component, which is
-// no liquid, go past New.
+// Every row within 3e-7, which is the printing. The rows of one dry component, which is no
+// liquid, go past New.
 func TestChecks(t *testing.T) {
 	const tolerance = 3e-7
 	all := checks(t)
@@ -168,8 +168,8 @@ func TestDensityWithinUncertainty(t *testing.T) {
 	}
 }
 
-// The deviations of the water polynomials are what package water shows them to be, from
-// 0 °C to 150 °C: within 0.0006 of cp and 0.0004 of density.
+// The deviations of the water polynomials are what package water shows them to be, from 0
+// °C to 150 °C: within 0.0006 of cp and 0.0004 of density.
 func TestWaterDeviation(t *testing.T) {
 	f := mustNew(t, Composition{Water: 1})
 	var worst float64
@@ -198,8 +198,8 @@ func TestWaterDeviation(t *testing.T) {
 	t.Logf("stated deviation of cp within %.2g of the true one", worst)
 }
 
-// Heat as worked outside of this project by the same equations, within 1e-4; the
-// pressure is 3 bar throughout.
+// Heat as worked outside of this project by the same equations, within 1e-4; the pressure
+// is 3 bar throughout.
 func TestWorkedHeat(t *testing.T) {
 	for _, tt := range []struct {
 		food         string

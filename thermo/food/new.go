@@ -18,8 +18,8 @@ type Composition struct {
 const (
 	// sumTolerance is how far an analysis may miss the whole; it is scaled to it.
 	sumTolerance = 0.005
-	// leastLiquid is the least mass fraction of water and fat together: with less
-	// it is a powder or a paste, by our own judgement.
+	// leastLiquid is the least mass fraction of water and fat together: with less it is a
+	// powder or a paste, by our own judgement.
 	leastLiquid = 0.2
 )
 
@@ -49,9 +49,9 @@ func (c Composition) String() string {
 	return "{" + strings.Join(parts, ", ") + "}"
 }
 
-// New returns the liquid food of that composition. The fractions may miss 1 by up
-// to 0.005 together, as analyses do, and are scaled to it. The error names the fraction that
-// is not one, or what they make together.
+// New returns the liquid food of that composition. The fractions may miss 1 by up to 0.005
+// together, as analyses do, and are scaled to it. The error names the fraction that is not
+// one, or what they make together.
 func New(c Composition) (thermo.Fluid, error) {
 	if err := c.check(); err != nil {
 		return nil, err
@@ -135,9 +135,9 @@ func Products() []string {
 	return out
 }
 
-// Product returns the food of that name, of common composition: whole milk of 3.5 %
-// fat, cream of 40 % fat, wort of 12 °P. Better than a name is the composition
-// that a laboratory found. The error of an unknown name tells the near ones and all.
+// Product returns the food of that name, of common composition: whole milk of 3.5 % fat,
+// cream of 40 % fat, wort of 12 °P. Better than a name is the composition that a laboratory
+// found. The error of an unknown name tells the near ones and all.
 func Product(name string) (thermo.Fluid, error) {
 	k, err := roster.Find("food", name, Products(), also)
 	if err != nil {

@@ -2,7 +2,8 @@ package oil
 
 import "fmt"
 
-// waterAt60F is the density in kg/m³ of the water to which specific gravity at 60 °F refers.
+// waterAt60F is the density in kg/m³ of the water to which specific gravity at 60 °F
+// refers.
 const waterAt60F = 999.016
 
 // API gravities that petroleum may have: beyond, D1250 has no group.
@@ -13,8 +14,8 @@ const minAPI, maxAPI = -10.0, 100.0
 //
 //	SG = 141.5/(API + 131.5),   ρ(60 °F) = 999.016 kg/m³ · SG
 //
-// and from 60 °F to 15 °C by the volume correction of the group, "" being chosen by
-// density (see [Petroleum]).
+// and from 60 °F to 15 °C by the volume correction of the group, "" being chosen by density
+// (see [Petroleum]).
 func DensityOfAPI(api float64, groupName string) (float64, error) {
 	if !(api >= minAPI && api <= maxAPI) {
 		return 0, fmt.Errorf("API gravity of %g; it lies from %g to %g", api, minAPI, maxAPI)

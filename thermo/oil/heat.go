@@ -19,17 +19,17 @@ func ofFahrenheit(a, b float64) quadratic {
 }
 
 // cragoe is C. S. Cragoe, Thermal Properties of Petroleum Products, NBS Miscellaneous
-// Publication 97 (1929): cp = (0.388 + 0.00045 t)/√SG Btu/(lb °F), t in °F; 0 °F to
-// 400 °F, specific gravity 0.75 to 0.96, said to be good for 4 % (from memory).
+// Publication 97 (1929): cp = (0.388 + 0.00045 t)/√SG Btu/(lb °F), t in °F; 0 °F to 400 °F,
+// specific gravity 0.75 to 0.96, said to be good for 4 % (from memory).
 func cragoe(sg float64) quadratic {
 	return ofFahrenheit(0.388/math.Sqrt(sg), 0.00045/math.Sqrt(sg))
 }
 
 const cragoeMinSG, cragoeMaxSG = 0.75, 0.96
 
-// keslerLee is M. G. Kesler, B. I. Lee, Hydrocarbon Processing 55(3) (1976) 153, in SI as in
-// M. R. Riazi, Characterization and Properties of Petroleum Fractions (ASTM MNL50, 2005):
-// liquid up to a reduced temperature of 0.85.
+// keslerLee is M. G. Kesler, B. I. Lee, Hydrocarbon Processing 55(3) (1976) 153, in SI as
+// in M. R. Riazi, Characterization and Properties of Petroleum Fractions (ASTM MNL50,
+// 2005): liquid up to a reduced temperature of 0.85.
 func keslerLee(sg, kw float64) quadratic {
 	a := 1000 * (1.4651 + 0.2302*kw)
 	return quadratic{a * (0.306469 - 0.16734*sg), a * (0.001467 - 0.000551*sg)}
@@ -37,8 +37,8 @@ func keslerLee(sg, kw float64) quadratic {
 
 const keslerLeeReduced = 0.85
 
-// api7D22 is API Technical Data Book, procedure 7D2.2: cp = A1 + A2 T + A3 T² in
-// Btu/(lb °R), T in °R.
+// api7D22 is API Technical Data Book, procedure 7D2.2: cp = A1 + A2 T + A3 T² in Btu/(lb
+// °R), T in °R.
 func api7D22(sg, kw float64) quadratic {
 	w := 1 + 0.82463*kw
 	a1 := -1.17126 + (0.023722+0.024907*sg)*kw + (1.14982-0.046535*kw)/sg
@@ -47,8 +47,8 @@ func api7D22(sg, kw float64) quadratic {
 	return quadratic{btu * a1, btu * a2 * 1.8, btu * a3 * 1.8 * 1.8}
 }
 
-// fallonWatson is J. F. Fallon, K. M. Watson, National Petroleum News 36 (1944) R-372,
-// from memory.
+// fallonWatson is J. F. Fallon, K. M. Watson, National Petroleum News 36 (1944) R-372, from
+// memory.
 func fallonWatson(sg, kw float64) quadratic {
 	api := 141.5/sg - 131.5
 	k := 0.05*kw + 0.41

@@ -5,8 +5,8 @@ import (
 	"testing"
 )
 
-// Every figure of the table within 3e-6, to which the gravities and Watson factors of
-// the table are printed.
+// Every figure of the table within 3e-6, to which the gravities and Watson factors of the
+// table are printed.
 func TestCorrelations(t *testing.T) {
 	const tolerance = 3e-6
 	all := records(t, "petroleum-cp.csv")

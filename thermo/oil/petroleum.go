@@ -33,12 +33,12 @@ type petroleum struct {
 // within the range of its group.
 //
 // watson is its Watson factor, 10 to 13, for the cp of Kesler and Lee up to a reduced
-// temperature of 0.85. With 0 it is not known, and cp is Cragoe's, for specific
-// gravities from 0.75 to 0.96.
+// temperature of 0.85. With 0 it is not known, and cp is Cragoe's, for specific gravities
+// from 0.75 to 0.96.
 //
-// groupName is the product group of ASTM D1250 (see [Groups]). With "" it is that one of the
-// distillates into which the density falls, and what it would be by the other groups goes into
-// the uncertainty of density.
+// groupName is the product group of ASTM D1250 (see [Groups]). With "" it is that one of
+// the distillates into which the density falls, and what it would be by the other groups
+// goes into the uncertainty of density.
 func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error) {
 	g, err := groupFor(density15, groupName)
 	if err != nil {
@@ -97,8 +97,8 @@ func (f *petroleum) setHeat(sg, watson float64) error {
 	return nil
 }
 
-// setPressureTerm works v − T dv/dT in the middle of the range: with
-// ρ = ρ15 exp(−x (1 + 0.8 x)), x = α (T − 15 °C), dv/dT is v α (1 + 1.6 x).
+// setPressureTerm works v − T dv/dT in the middle of the range: with ρ = ρ15 exp(−x (1 +
+// 0.8 x)), x = α (T − 15 °C), dv/dT is v α (1 + 1.6 x).
 func (f *petroleum) setPressureTerm() {
 	T := (minPetroleumT + f.maxT) / 2
 	x := f.alpha * (T - fifteenC)
@@ -135,14 +135,14 @@ func (f *petroleum) why(T float64) string {
 	return "range of ASTM D1250-80"
 }
 
-// Uncertainty of cp takes the widest of the other three correlations' deviations at T, but at
-// least 5 %, for the half-width of a rectangle, u = half-width/√3. Where the Watson
+// Uncertainty of cp takes the widest of the other three correlations' deviations at T, but
+// at least 5 %, for the half-width of a rectangle, u = half-width/√3. Where the Watson
 // factor is not known, they are worked for 11 and for 12.7.
 //
 // That of density is the root sum of squares of three: the precision of the volume
 // correction, at 95 % 0.05 % up to 38 °C and 0.1 % more for every 28 K above (ASTM
-// D1250-80, from memory), halved; as rectangles the widest deviation of the other groups where none was
-// named; and the compression from 1 atm that is left out, 1e-9 a pascal. The
+// D1250-80, from memory), halved; as rectangles the widest deviation of the other groups
+// where none was named; and the compression from 1 atm that is left out, 1e-9 a pascal. The
 // density at 15 °C is taken for exact.
 func (f *petroleum) Uncertainty(T, p float64) (cp, density float64) {
 	half, at := cpHalfWidth, f.cp.at(T)

@@ -48,10 +48,10 @@ func TestChosenCorrelation(t *testing.T) {
 	}
 }
 
-// Heat as worked outside of this project: 4 t/h of heavy fuel oil of SG 0.95 and Watson 11.5
-// heated from 60 °C to 110 °C at 8 bar by Kesler and Lee; 500 L/min of lubricating oil of 880
-// kg/m³ cooled from 65 °C to 45 °C at 4 bar by Cragoe, in which SG was taken for 880/999.016,
-// 0.05 % above ours and 0.02 % less in cp.
+// Heat as worked outside of this project: 4 t/h of heavy fuel oil of SG 0.95 and Watson
+// 11.5 heated from 60 °C to 110 °C at 8 bar by Kesler and Lee; 500 L/min of lubricating oil
+// of 880 kg/m³ cooled from 65 °C to 45 °C at 4 bar by Cragoe, in which SG was taken for
+// 880/999.016, 0.05 % above ours and 0.02 % less in cp.
 func TestWorkedHeat(t *testing.T) {
 	rho15, err := DensityOfAPI(141.5/0.95-131.5, "fuel oil")
 	if err != nil {
@@ -74,10 +74,10 @@ func TestWorkedHeat(t *testing.T) {
 	}
 }
 
-// The spread of the other correlations is the half-width, by hand from the table: SG 0.72, K
-// 12.129 at 20 °C, Kesler and Lee 2127.479 and Fallon and Watson 2032.567, 4.46 % less: 5 % it is. SG
-// 0.95, K 11.3693 at 150 °C: Cragoe 2250.447 over 2232.040, API 2293.115. Nothing
-// above 5 % either. Aromatic oil of K 10 is far from Cragoe, which knows no K.
+// The spread of the other correlations is the half-width, by hand from the table: SG 0.72,
+// K 12.129 at 20 °C, Kesler and Lee 2127.479 and Fallon and Watson 2032.567, 4.46 % less: 5
+// % it is. SG 0.95, K 11.3693 at 150 °C: Cragoe 2250.447 over 2232.040, API 2293.115.
+// Nothing above 5 % either. Aromatic oil of K 10 is far from Cragoe, which knows no K.
 func TestCpUncertainty(t *testing.T) {
 	u := func(f thermo.Fluid, T float64) float64 {
 		cp, _ := f.Uncertainty(T, atm)
@@ -119,9 +119,10 @@ func TestSpreadIsCovered(t *testing.T) {
 	}
 }
 
-// By hand at 100 °C and 1 atm: precision (0.0005 + 0.001 · 62.22/27.78)/2 = 0.00137. Without
-// a group fuel oil of 900 kg/m³ may be crude oil or lubricating oil, whose factors are 0.934494
-// and 0.939785 beside 0.933350: 0.69 % at worst. 2 MPa above compress by 0.2 %.
+// By hand at 100 °C and 1 atm: precision (0.0005 + 0.001 · 62.22/27.78)/2 = 0.00137.
+// Without a group fuel oil of 900 kg/m³ may be crude oil or lubricating oil, whose factors
+// are 0.934494 and 0.939785 beside 0.933350: 0.69 % at worst. 2 MPa above compress by 0.2
+// %.
 func TestDensityUncertainty(t *testing.T) {
 	for _, tt := range []struct {
 		group string

@@ -1,8 +1,9 @@
 package oil
 
-// Tables of heat-transfer liquids, a row being temperature in K, cp in J/(kg K), density in kg/m³ and
-// vapour pressure in Pa, 0 where none is printed. The values are those of the publications named
-// beside the liquids, by way of the incompressible-fluid files of CoolProp.
+// Tables of heat-transfer liquids, a row being temperature in K, cp in J/(kg K), density in
+// kg/m³ and vapour pressure in Pa, 0 where none is printed. The values are those of the
+// publications named beside the liquids, by way of the incompressible-fluid files of
+// CoolProp.
 
 var eutectic = [][4]float64{
 	{285.15, 1523, 1070, 0.576}, {290.15, 1537, 1070, 0.986}, {295.15, 1552, 1060, 1.65}, {300.15, 1566, 1060, 2.68},

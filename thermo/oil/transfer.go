@@ -17,10 +17,10 @@ type transferLiquid struct {
 	gravity      float64 // specific gravity of a mineral oil, 0 of others
 }
 
-// Half-widths of what a data sheet says, as fractions. Makers call their values
-// typical, and state no tolerance: 3 % of cp for a synthetic of known composition, 5 % for
-// a mineral oil, 1 % of density (common practice, no source). The eutectic's
-// density has 0.5 % beside for its printing to 10 kg/m³.
+// Half-widths of what a data sheet says, as fractions. Makers call their values typical,
+// and state no tolerance: 3 % of cp for a synthetic of known composition, 5 % for a mineral
+// oil, 1 % of density (common practice, no source). The eutectic's density has 0.5 % beside
+// for its printing to 10 kg/m³.
 const (
 	syntheticCp, mineralCp    = 0.03, 0.05
 	sheetDensity, coarsePrint = 0.01, 0.005
@@ -62,8 +62,8 @@ func HeatTransferLiquids() []string {
 }
 
 // HeatTransfer returns the heat-transfer liquid of that name, in any case, with spaces or
-// hyphens. It boils by the vapour pressures of its table; of mineral oil B none are
-// known. The error of an unknown name tells the near ones and all of them.
+// hyphens. It boils by the vapour pressures of its table; of mineral oil B none are known.
+// The error of an unknown name tells the near ones and all of them.
 func HeatTransfer(name string) (thermo.Fluid, error) {
 	k, err := roster.Find("heat-transfer liquid", name, HeatTransferLiquids(), alsoTransfer)
 	if err != nil {
@@ -94,8 +94,8 @@ type transfer struct {
 }
 
 // Uncertainty of cp takes 3 % for a synthetic liquid, 5 % for a mineral oil or, where that
-// is more, its deviation from Cragoe's correlation at T; of density 1 %, 1.5 % for the eutectic:
-// half-widths of rectangles, u = half-width/√3.
+// is more, its deviation from Cragoe's correlation at T; of density 1 %, 1.5 % for the
+// eutectic: half-widths of rectangles, u = half-width/√3.
 func (f *transfer) Uncertainty(T, p float64) (cp, density float64) {
 	half := f.cp
 	if f.other[0] != 0 {

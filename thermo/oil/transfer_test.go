@@ -44,8 +44,8 @@ func TestTransferRows(t *testing.T) {
 	}
 }
 
-// Leave every other row out: what straight lines and cubics through the rest miss of it. Lines
-// miss up to 0.29 %, and cubics up to 0.37 %, both of mineral oil B, whose cp is
+// Leave every other row out: what straight lines and cubics through the rest miss of it.
+// Lines miss up to 0.29 %, and cubics up to 0.37 %, both of mineral oil B, whose cp is
 // printed to 10 J/(kg K), 0.3 % of it, which a cubic follows a little more than a line.
 // Where cp is printed more finely both miss 0.04 %.
 func TestInterpolation(t *testing.T) {

@@ -12,10 +12,9 @@ const (
 	sixtyF   = (60 + 459.67) / 1.8 // K
 )
 
-// group is a product group of ASTM D1250-80 (API MPMS 11.1, ISO 91-1), with its
-// constants for 15 °C and its range of density at 60 °F in kg/m³. Those of fuel oil and
-// lubricating oil are from memory; all are 1.8 times the constants for 60 °F, to the digits
-// printed.
+// group is a product group of ASTM D1250-80 (API MPMS 11.1, ISO 91-1), with its constants
+// for 15 °C and its range of density at 60 °F in kg/m³. Those of fuel oil and lubricating
+// oil are from memory; all are 1.8 times the constants for 60 °F, to the digits printed.
 type group struct {
 	name       string
 	k          [3]float64
@@ -56,8 +55,8 @@ func groupFor(rho15 float64, name string) (*group, error) {
 	return choose(name, func(g *group) float64 { return g.rho60(rho15) })
 }
 
-// choose returns the group of that name, or the distillate, which holds the density at
-// 60 °F.
+// choose returns the group of that name, or the distillate, which holds the density at 60
+// °F.
 func choose(name string, rho60 func(*group) float64) (*group, error) {
 	k := 0
 	if name == "" {

@@ -39,10 +39,11 @@ func TestVolumeCorrection(t *testing.T) {
 	t.Logf("%d rows, worst deviation %.2g", len(all), worst)
 }
 
-// The same standard for 60 °F, with its own constants (ASTM D1250-80), agrees within 9e-5 from
-// 0 °C to 100 °C and 640 kg/m³ to 1000 kg/m³. Only in the transition group, whose alpha is the small difference of two large
-// terms, do the half per mille of density between 15 °C and 60 °F matter: 5e-4. The
-// 15 °C form is the one believed, since the density is that at 15 °C.
+// The same standard for 60 °F, with its own constants (ASTM D1250-80), agrees within 9e-5
+// from 0 °C to 100 °C and 640 kg/m³ to 1000 kg/m³. Only in the transition group, whose
+// alpha is the small difference of two large terms, do the half per mille of density
+// between 15 °C and 60 °F matter: 5e-4. The 15 °C form is the one believed, since the
+// density is that at 15 °C.
 func TestSixtyFahrenheit(t *testing.T) {
 	constants := map[string][3]float64{
 		"crude oil": {341.0957, 0, 0}, "fuel oil": {103.872, 0.2701, 0}, "jet-kerosene": {330.301, 0, 0},

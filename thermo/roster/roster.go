@@ -1,5 +1,5 @@
-// Package roster finds an entry of a short list by the name that a person writes: in
-// any case, with spaces, hyphens or neither.
+// Package roster finds an entry of a short list by the name that a person writes: in any
+// case, with spaces, hyphens or neither.
 package roster
 
 import (
@@ -14,8 +14,8 @@ import (
 // longest name that is quoted back in full, in letters.
 const longest = 60
 
-// Find returns the place among names of the one that name stands for. also leads from
-// other names to one of names. what says in the error of an unknown name what was sought, such as
+// Find returns the place among names of the one that name stands for. also leads from other
+// names to one of names. what says in the error of an unknown name what was sought, such as
 // "solid"; the error tells the near names and all of them.
 func Find(what, name string, names []string, also map[string]string) (int, error) {
 	sought := fold(name)

@@ -2,9 +2,9 @@ package solid
 
 import "heatreeve/thermo/table"
 
-// handbookSolid has cp in J/(kg K) and density in kg/m³ at one temperature, of the
-// kind that appendix A of Incropera, Fundamentals of Heat and Mass Transfer, gives at
-// 300 K. All of them are from memory.
+// handbookSolid has cp in J/(kg K) and density in kg/m³ at one temperature, of the kind
+// that appendix A of Incropera, Fundamentals of Heat and Mass Transfer, gives at 300 K. All
+// of them are from memory.
 type handbookSolid struct {
 	name       string
 	kind       *kind
@@ -15,8 +15,8 @@ type handbookSolid struct {
 	melting    float64 // K; 0 where none is known or it chars first
 }
 
-// kind is what solids of a sort have in common: half-widths as fractions, and the
-// drift of cp a kelvin.
+// kind is what solids of a sort have in common: half-widths as fractions, and the drift of
+// cp a kelvin.
 type kind struct{ cp, drift, density float64 }
 
 var (

@@ -3,9 +3,10 @@ package solid
 import "heatreeve/thermo/table"
 
 // janafSolid is a pure substance by the NIST-JANAF Thermochemical Tables, 4th edition
-// (1998). A row is a temperature in K, cp in J/(kg K) and the enthalpy above that at 298.15 K
-// in J/kg, the molar values of the table over the molar mass in kg/mol. Density in kg/m³ and melting point in K are handbook values from
-// memory (those of aluminium and copper are fixed points of ITS-90).
+// (1998). A row is a temperature in K, cp in J/(kg K) and the enthalpy above that at 298.15
+// K in J/kg, the molar values of the table over the molar mass in kg/mol. Density in kg/m³
+// and melting point in K are handbook values from memory (those of aluminium and copper are
+// fixed points of ITS-90).
 type janafSolid struct {
 	name, table      string
 	molarMass        float64
@@ -13,8 +14,8 @@ type janafSolid struct {
 	rows             [][3]float64
 }
 
-// janafHalfWidth is that of cp as a fraction: 1 %, from memory for metals
-// near and above room temperature.
+// janafHalfWidth is that of cp as a fraction: 1 %, from memory for metals near and above
+// room temperature.
 const janafHalfWidth = 0.01
 
 // Quartz ends before its change from α to β near 847 K, across which the table's own

@@ -1,23 +1,25 @@
-// Package solid holds common solids: metals, minerals, building and organic matter,
-// to account for the heat of what stands, lies or moves through a plant.
+// Package solid holds common solids: metals, minerals, building and organic matter, to
+// account for the heat of what stands, lies or moves through a plant.
 //
-// Four kinds of source: the NIST-JANAF tables of five pure substances, 200 K to 900 K;
-// two formulas of the Eurocodes, for carbon steel (20 °C to 600 °C) and dry concrete;
-// handbook figures of twelve solids at one temperature, taken for constant over
-// some tens of kelvins around it. The JANAF tables are met in cp and in enthalpy. From memory, and so confirmed by nothing that was opened again, are the Eurocode
-// formulas, the handbook figures, all densities and the melting points.
+// Three kinds of source: the NIST-JANAF tables of five pure substances, 200 K to 900 K; two
+// formulas of the Eurocodes, for carbon steel (20 °C to 600 °C) and dry concrete; handbook
+// figures of twelve solids at one temperature, taken for constant over some tens of kelvins
+// around it. The JANAF tables are met in cp and in enthalpy. From memory, and so confirmed
+// by nothing that was opened again, are the Eurocode formulas, the handbook figures, all
+// densities and the melting points.
 //
-// Found: every row of the sources in cp, density and enthalpy, to the digits printed.
-// The cubics of package table, drawn through the JANAF cp alone, miss JANAF's enthalpies by
-// less than 0.08 % (alumina near 200 K 0.34 %), trapezoids by up to 0.9 %.
+// Found: every row of the sources in cp, density and enthalpy, to the digits printed; only
+// that of quartz at 900 K is refused, as β. The cubics of package table, drawn through the
+// JANAF cp alone, miss JANAF's enthalpies by less than 0.08 % (alumina near 200 K 0.34 %),
+// trapezoids by up to 0.9 %.
 //
-// A solid is incompressible: cv is cp, density is constant, and the enthalpy
-// rises with pressure by v Δp. Span ends at the melting point where one is known.
+// A solid is incompressible: cv is cp, density is constant, and the enthalpy rises with
+// pressure by v Δp. Span ends at the melting point where one is known.
 //
-// Not modelled: a change within the solid (the peak of carbon steel near 735 °C,
-// quartz from α to β near 847 K: the ranges end before), moisture and its
-// evaporation, thermal expansion, porosity beyond the bulk density of loose or porous
-// matter, and alloys other than those named.
+// Not modelled: a change within the solid (the peak of carbon steel near 735 °C, quartz
+// from α to β near 847 K: the ranges end before), moisture and its evaporation, thermal
+// expansion, porosity beyond the bulk density of loose or porous matter, and alloys other
+// than those named.
 package solid
 
 import (
@@ -77,8 +79,8 @@ var also = map[string]string{
 	"oak": "oak wood", "wood": "oak wood", "polyethylene": "high-density polyethylene", "HDPE": "high-density polyethylene", "polyethylene hd": "high-density polyethylene",
 }
 
-// New returns the solid of that name, in any case, with spaces or hyphens. The error of
-// an unknown name tells the near ones and all of them.
+// New returns the solid of that name, in any case, with spaces or hyphens. The error of an
+// unknown name tells the near ones and all of them.
 func New(name string) (thermo.Fluid, error) {
 	k, err := roster.Find("solid", name, Names(), also)
 	if err != nil {
@@ -95,10 +97,10 @@ type solid struct {
 }
 
 // Uncertainty takes the stated half-widths for rectangular, u = half-width/√3. That of cp
-// is 1 % for the JANAF tables, and 5 % for what is from memory, 10 % where it is
-// organic. A constant cp is worse away from its temperature, by 0.08 % a kelvin
-// for metals, 0.2 % for minerals, 0.4 % for ice and organic matter (from memory of how their
-// cp rises). Density is known to 5 %, to 10 % where it is that of loose or grown matter.
+// is 1 % for the JANAF tables, and 5 % for what is from memory, 10 % where it is organic. A
+// constant cp is worse away from its temperature, by 0.08 % a kelvin for metals, 0.2 % for
+// minerals, 0.4 % for ice and organic matter (from memory of how their cp rises). Density
+// is known to 5 %, to 10 % where it is that of loose or grown matter.
 func (s *solid) Uncertainty(T, p float64) (cp, density float64) {
 	return (s.cpHalf + s.drift*math.Abs(T-s.at)) / math.Sqrt(3), s.densityU
 }

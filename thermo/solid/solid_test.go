@@ -75,8 +75,8 @@ func rows(t *testing.T) []row {
 	return out
 }
 
-// The whole table: cp, density and enthalpy at every row, to the digits that are
-// printed; the enthalpies of the Eurocode formulas within 4e-6 beside.
+// The whole table: cp, density and enthalpy at every row, to the digits that are printed;
+// the enthalpies of the Eurocode formulas within 4e-6 beside.
 func TestTable(t *testing.T) {
 	const printedCp, printedH, formula = 0.005, 0.05, 4e-6 // J/(kg K), J/kg, fraction
 	all := rows(t)
@@ -127,9 +127,10 @@ func enthalpyAbove(t *testing.T, f thermo.Fluid, r row) float64 {
 	return h
 }
 
-// How good are cubics where a source has no enthalpies? Drawn through the cp of the JANAF rows
-// alone they miss JANAF's own enthalpies by less than 0.08 % of the distance from 298.15 K, but
-// for alumina below that (0.34 %, where rows lie 98 K apart); trapezoids by up to 0.9 %.
+// How good are cubics where a source has no enthalpies? Drawn through the cp of the JANAF
+// rows alone they miss JANAF's own enthalpies by less than 0.08 % of the distance from
+// 298.15 K, but for alumina below that (0.34 %, where rows lie 98 K apart); trapezoids by
+// up to 0.9 %.
 func TestCubicsAgainstEnthalpies(t *testing.T) {
 	for k := range janaf {
 		s := &janaf[k]
@@ -159,8 +160,8 @@ func TestCubicsAgainstEnthalpies(t *testing.T) {
 	}
 }
 
-// Heat as worked outside of this project: from the NIST-JANAF enthalpies, and from the integral
-// of the formula of EN 1993-1-2 (2 t/h of billets, 20 °C to 600 °C).
+// Heat as worked outside of this project: from the NIST-JANAF enthalpies, and from the
+// integral of the formula of EN 1993-1-2 (2 t/h of billets, 20 °C to 600 °C).
 func TestWorkedHeat(t *testing.T) {
 	for _, tt := range []struct {
 		solid              string

@@ -8,8 +8,8 @@ import (
 
 const referencePressure = 101325.0 // Pa, where the pressure term is zero
 
-// described is what a fluid by rows and one by polynomials have in common: all
-// but cp, density and the integral of cp at a temperature.
+// described is what a fluid by rows and one by polynomials have in common: all but cp,
+// density and the integral of cp at a temperature.
 type described struct {
 	name, source      string
 	phase             thermo.Phase
@@ -32,8 +32,8 @@ func (d *described) MolarMass() float64    { return d.molarMass }
 // Uncertainty is as stated, the same at every state.
 func (d *described) Uncertainty(T, p float64) (cp, density float64) { return d.cpU, d.densityU }
 
-// Span returns the freezing and the boiling point as the user stated them, at
-// whatever pressure, or the boiling point at p by the vapour pressures of the rows.
+// Span returns the freezing and the boiling point as the user stated them, at whatever
+// pressure, or the boiling point at p by the vapour pressures of the rows.
 func (d *described) Span(p float64) (lo, hi float64) {
 	if d.vapour != nil {
 		return d.freezing, d.vapour.boiling(p)
@@ -41,8 +41,8 @@ func (d *described) Span(p float64) (lo, hi float64) {
 	return d.freezing, d.boiling
 }
 
-// check returns a *[thermo.RangeError] where T and p lie outside the bounds or the
-// limits as stated.
+// check returns a *[thermo.RangeError] where T and p lie outside the bounds or the limits
+// as stated.
 func (d *described) check(T, p float64) error {
 	if err := d.bounds.Check(d.name, T, p, d.extent); err != nil {
 		return err
@@ -77,8 +77,8 @@ func (d *described) upperEnd() string {
 	return "boiling point as stated"
 }
 
-// properties completes cp in J/(kg K), density in kg/m³ and the integral of cp in J/kg
-// at T and p.
+// properties completes cp in J/(kg K), density in kg/m³ and the integral of cp in J/kg at T
+// and p.
 func (d *described) properties(T, p, cp, rho, heat float64) thermo.Properties {
 	h := heat + (p-referencePressure)*d.pressureTerm
 	cv := cp
@@ -89,8 +89,8 @@ func (d *described) properties(T, p, cp, rho, heat float64) thermo.Properties {
 	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cv, Density: rho}
 }
 
-// setPressureTerm keeps v − T dv/dT of a liquid or solid, from its density and
-// the slope of that at T in K.
+// setPressureTerm keeps v − T dv/dT of a liquid or solid, from its density and the slope of
+// that at T in K.
 func (d *described) setPressureTerm(T, rho, slope float64) {
 	if d.phase != thermo.Gas {
 		d.pressureTerm = (1 + T*slope/rho) / rho

@@ -2,8 +2,7 @@ package table
 
 import "math"
 
-// cubic is a polynomial in the distance from the start of its stretch, lowest
-// power first.
+// cubic is a polynomial in the distance from the start of its stretch, lowest power first.
 type cubic [4]float64
 
 func (c *cubic) at(t float64) float64    { return c[0] + t*(c[1]+t*(c[2]+t*c[3])) }
@@ -14,16 +13,16 @@ func (c *cubic) integral(t float64) float64 {
 	return t * (c[0] + t*(c[1]/2+t*(c[2]/3+t*(c[3]/4))))
 }
 
-// interpolate returns one cubic a stretch between neighbouring x, which rise. They
-// meet with equal slope, and rise or fall wherever the values do: no cubic leaves
-// the interval between the two values at its ends. Two values make a straight line.
+// interpolate returns one cubic a stretch between neighbouring x, which rise. They meet
+// with equal slope, and rise or fall wherever the values do: no cubic leaves the interval
+// between the two values at its ends. Two values make a straight line.
 //
-// The slope at an inner value is that of the parabola through it and its
-// neighbours, at an end that of the parabola through the last three; it is cut
-// to three times the lesser of the neighbouring secants, and to 0 where those differ in
-// sign, which is enough to be monotone (F. N. Fritsch, R. E. Carlson, Monotone
-// Piecewise Cubic Interpolation, SIAM J. Numer. Anal. 17 (1980) 238-246). Smooth data
-// are met to the third order of the distance, at an extremum to the second.
+// The slope at an inner value is that of the parabola through it and its neighbours, at an
+// end that of the parabola through the last three; it is cut to three times the lesser of
+// the neighbouring secants, and to 0 where those differ in sign, which is enough to be
+// monotone (F. N. Fritsch, R. E. Carlson, Monotone Piecewise Cubic Interpolation, SIAM J.
+// Numer. Anal. 17 (1980) 238-246). Smooth data are met to the third order of the distance,
+// at an extremum to the second.
 func interpolate(x, y []float64) []cubic {
 	d := slopes(x, y)
 	out := make([]cubic, len(x)-1)
@@ -35,8 +34,8 @@ func interpolate(x, y []float64) []cubic {
 	return out
 }
 
-// parabolas returns one parabola a stretch, through the values y at its ends and
-// with the area by which the integrals at the ends differ.
+// parabolas returns one parabola a stretch, through the values y at its ends and with the
+// area by which the integrals at the ends differ.
 func parabolas(x, y, integrals []float64) []cubic {
 	out := make([]cubic, len(x)-1)
 	for k := range out {
@@ -65,8 +64,8 @@ func slopes(x, y []float64) []float64 {
 	return d
 }
 
-// endSlope is that of the parabola through the last three points: h1 and s1 are
-// length and secant of the stretch at the end, h2 and s2 of the next.
+// endSlope is that of the parabola through the last three points: h1 and s1 are length and
+// secant of the stretch at the end, h2 and s2 of the next.
 func endSlope(h1, h2, s1, s2 float64) float64 {
 	return ((2*h1+h2)*s1 - h1*s2) / (h1 + h2)
 }

@@ -36,8 +36,8 @@ func grid(n int, crooked bool) []float64 {
 }
 
 // With 16 times as many stretches the error falls by 16³ where the function has no
-// extremum, and by 16² where it has one, whether the rows lie alike or not. An extremum
-// is put to many places between the rows, of which the worst counts.
+// extremum, and by 16² where it has one, whether the rows lie alike or not. An extremum is
+// put to many places between the rows, of which the worst counts.
 func TestOrderOfConvergence(t *testing.T) {
 	minima := func(at float64) func(float64) float64 {
 		return func(x float64) float64 { return (x - at) * (x - at) }
@@ -69,8 +69,7 @@ func TestOrderOfConvergence(t *testing.T) {
 	}
 }
 
-// A straight line and a parabola without an extremum are met exactly, but for the
-// rounding.
+// A straight line and a parabola without an extremum are met exactly, but for the rounding.
 func TestParabolaIsExact(t *testing.T) {
 	for name, f := range map[string]func(float64) float64{
 		"line":     func(x float64) float64 { return 3 - 2*x },
@@ -82,8 +81,8 @@ func TestParabolaIsExact(t *testing.T) {
 	}
 }
 
-// Whatever the rows, no cubic leaves the interval between its two ends, and its
-// slope is that of its neighbour where they meet.
+// Whatever the rows, no cubic leaves the interval between its two ends, and its slope is
+// that of its neighbour where they meet.
 func TestNoOvershoot(t *testing.T) {
 	r := rand.New(rand.NewPCG(1, 2))
 	for range 2000 {

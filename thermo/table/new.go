@@ -8,10 +8,10 @@ import (
 	"heatreeve/thermo"
 )
 
-// New returns the fluid that the rows describe, under a name and with the source
-// of the figures. Rows are above zero and at most 1e6 in SI units, and their
-// temperatures rise from row to row. The error names every row, by its number from 1, and every
-// option that is wrong.
+// New returns the fluid that the rows describe, under a name and with the source of the
+// figures. Rows are above zero and at most 1e6 in SI units, and their temperatures rise
+// from row to row. The error names every row, by its number from 1, and every option that
+// is wrong.
 func New(name, source string, points []Point, opts Options) (thermo.Fluid, error) {
 	opts = opts.withDefaults()
 	if n := len(points); n > 1 {
@@ -88,8 +88,8 @@ func (o Options) checkEnthalpies(points []Point) (faults []error) {
 	return faults
 }
 
-// leastRise is by what fraction a vapour pressure rises at least from row to row, so that their
-// logarithms are apart.
+// leastRise is by what fraction a vapour pressure rises at least from row to row, so that
+// their logarithms are apart.
 const leastRise = 1e-9
 
 // checkVapour checks the column of vapour pressures.
@@ -120,16 +120,16 @@ func (o Options) checkVapour(points []Point) (faults []error) {
 	return faults
 }
 
-// setBoiling has the liquid boil by its vapour pressures. Where they are lower than
-// the least of them nothing is known, so that the range begins there.
+// setBoiling has the liquid boil by its vapour pressures. Where they are lower than the
+// least of them nothing is known, so that the range begins there.
 func (f *tabulated) setBoiling(v *vapour) {
 	if f.vapour = v; v != nil {
 		f.bounds.MinP = v.lowest
 	}
 }
 
-// checkGas makes sure that cv = cp − p/(ρT) is above zero, first at the rows and then
-// all along the cubics between them.
+// checkGas makes sure that cv = cp − p/(ρT) is above zero, first at the rows and then all
+// along the cubics between them.
 func (f *tabulated) checkGas(points []Point) (faults []error) {
 	if len(points) == 1 {
 		return []error{errors.New("one row is a constant density, which no gas has at one pressure; give two rows or more")}

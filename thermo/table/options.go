@@ -14,27 +14,27 @@ import (
 type Options struct {
 	// Phase that is described; zero means thermo.Liquid.
 	Phase thermo.Phase
-	// MinT and MaxT in K narrow the range within the rows. A table of one row must
-	// have both, and so must a polynomial: they say how far it may be taken.
-	// Zero means the first and the last row.
+	// MinT and MaxT in K narrow the range within the rows. A table of one row must have
+	// both, and so must a polynomial: they say how far it may be taken. Zero means the
+	// first and the last row.
 	MinT, MaxT float64
-	// MaxP in Pa is the highest absolute pressure; zero means 2.5 MPa, for a gas
-	// twice its Pressure.
+	// MaxP in Pa is the highest absolute pressure; zero means 2.5 MPa, for a gas twice its
+	// Pressure.
 	MaxP float64
-	// Freezing and Boiling in K end the phase at either side: freezing and
-	// boiling point of a liquid at the pressure of its circuit, dew point
-	// (Freezing) of a gas, melting point (Boiling) of a solid. Zero means none is
-	// known, or that the rows have vapour pressures.
+	// Freezing and Boiling in K end the phase at either side: freezing and boiling point of
+	// a liquid at the pressure of its circuit, dew point (Freezing) of a gas, melting point
+	// (Boiling) of a solid. Zero means none is known, or that the rows have vapour
+	// pressures.
 	Freezing, Boiling float64
 	// Pressure in Pa at which the densities of a gas hold. A gas must have it; the others
 	// must not.
 	Pressure float64
-	// CpUncertainty and DensityUncertainty are relative standard uncertainties,
-	// as fractions up to 0.2. Zero means that none is stated, and 1 % is taken
-	// (common practice, no source).
+	// CpUncertainty and DensityUncertainty are relative standard uncertainties, as
+	// fractions up to 0.2. Zero means that none is stated, and 1 % is taken (common
+	// practice, no source).
 	CpUncertainty, DensityUncertainty float64
-	// Enthalpies in J/kg of the rows of a table, one a row, from any zero. Where they
-	// are given they are met, together with the cp of the rows: between two rows cp is the
+	// Enthalpies in J/kg of the rows of a table, one a row, from any zero. Where they are
+	// given they are met, together with the cp of the rows: between two rows cp is the
 	// parabola that has both, which joins the next without a step, but with a kink.
 	Enthalpies []float64
 	// MolarMass in kg/mol; zero means none.

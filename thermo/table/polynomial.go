@@ -31,16 +31,15 @@ type polynomial struct {
 	heat        power // integral of cp from 0 °C, over t
 }
 
-// Polynomial returns the fluid whose cp in J/(kg K) and density in kg/m³ are
-// polynomials of degree 6 at most:
+// Polynomial returns the fluid whose cp in J/(kg K) and density in kg/m³ are polynomials of
+// degree 6 at most:
 //
 //	Y(T) = c[0] + c[1] t + c[2] t² + ...,   t = T − 273.15 K
 //
-// opts must state the range in MinT and MaxT. Over the whole of it cp and density
-// are above zero and at most 1e6, and so is cv of a gas: not by samples, but
-// proven by the coefficients in Bernstein's basis, between which a polynomial stays. The
-// error names everything that is wrong, and a temperature where a polynomial is
-// not as it must be.
+// opts must state the range in MinT and MaxT. Over the whole of it cp and density are above
+// zero and at most 1e6, and so is cv of a gas: not by samples, but proven by the
+// coefficients in Bernstein's basis, between which a polynomial stays. The error names
+// everything that is wrong, and a temperature where a polynomial is not as it must be.
 func Polynomial(name, source string, cp, density []float64, opts Options) (thermo.Fluid, error) {
 	opts = opts.withDefaults()
 	faults := slices.Concat(checkNames(name, source), opts.check(),

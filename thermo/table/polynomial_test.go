@@ -9,8 +9,8 @@ import (
 	"heatreeve/thermo/fluidtest"
 )
 
-// cp and density of an invented liquid, and of an invented gas whose density is a
-// parabola through that of an ideal gas.
+// cp and density of an invented liquid, and of an invented gas whose density is a parabola
+// through that of an ideal gas.
 var (
 	liquidCp, liquidDensity = []float64{2000, 3.5, -2e-3}, []float64{900, -0.65, -1e-4, 1e-7}
 	gasCp, gasDensity       = []float64{1000, 0.1, 1e-4}, []float64{1.29, -4.2e-3, 8e-6}
@@ -41,8 +41,8 @@ func TestPolynomialConformance(t *testing.T) {
 	}
 }
 
-// By hand at 100 °C: cp = 2000 + 350 − 20, density = 900 − 65 − 1 + 0.1, and from 0 °C
-// ∫cp dT = 2000·100 + 3.5·100²/2 − 0.002·100³/3.
+// By hand at 100 °C: cp = 2000 + 350 − 20, density = 900 − 65 − 1 + 0.1, and from 0 °C ∫cp
+// dT = 2000·100 + 3.5·100²/2 − 0.002·100³/3.
 func TestPolynomialValues(t *testing.T) {
 	f := mustPolynomial(t, liquidCp, liquidDensity, liquidRange)
 	p, err := f.At(373.15, 1e5)
@@ -105,7 +105,8 @@ func TestPolynomialRefuses(t *testing.T) {
 		{"oil", "s", liquidCp, []float64{100, -1}, liquidRange, "density is not above zero at "},
 		{"oil", "s", []float64{2e6}, liquidDensity, liquidRange, "cp is above 1e+06 J/(kg K) at "},
 		{"oil", "s", liquidCp, []float64{1e300, 1e300, 1e300}, liquidRange, "density is above 1e+06 kg/m³ at "},
-		// A dip below zero over a tenth of a kelvin, which a coarse grid steps over: (t − 100)² − 0.0025.
+		// A dip below zero over a tenth of a kelvin, which a coarse grid steps over: (t −
+		// 100)² − 0.0025.
 		{"oil", "s", []float64{1e4 - 0.0025, -200, 1}, liquidDensity, liquidRange, "cp is not above zero at 373.1"},
 		{"gas", "s", gasCp, gasDensity, gasWith(4e5), "cp is no more than p/(ρT)"},
 		{"gas", "s", gasCp, gasDensity[:1], gasRange, "density is constant"},
@@ -117,8 +118,8 @@ func TestPolynomialRefuses(t *testing.T) {
 	}
 }
 
-// (t − a)² + c over [0, 100] is above zero for c > 0 however small, and where c < 0
-// the place that is told is not.
+// (t − a)² + c over [0, 100] is above zero for c > 0 however small, and where c < 0 the
+// place that is told is not.
 func TestAbove(t *testing.T) {
 	for _, a := range []float64{-1, 0, 1.7, 33.333, 64, 99.99, 100} {
 		for _, c := range []float64{1e-3, 1e-8} {

@@ -1,8 +1,8 @@
 package table
 
 // hull returns the Bernstein coefficients over [lo, hi] of a polynomial in t, lowest power
-// first. The polynomial stays between the least and the greatest of them,
-// and the outermost two are its values at the ends.
+// first. The polynomial stays between the least and the greatest of them, and the outermost
+// two are its values at the ends.
 func hull(c []float64, lo, hi float64) []float64 {
 	b := append([]float64(nil), c...)
 	n := len(b) - 1
@@ -34,11 +34,10 @@ func binomial(n, k int) float64 {
 
 const maxHalvings = 40
 
-// above proves that the polynomial c in t, lowest power first, is above zero all over
-// [lo, hi], and returns where it is not. Where every Bernstein coefficient
-// is above zero, so is the polynomial; where an end is not, neither is it; in between the
-// interval is halved. A polynomial that comes within rounding of zero counts
-// as not above it.
+// above proves that the polynomial c in t, lowest power first, is above zero all over [lo,
+// hi], and returns where it is not. Where every Bernstein coefficient is above zero, so is
+// the polynomial; where an end is not, neither is it; in between the interval is halved. A
+// polynomial that comes within rounding of zero counts as not above it.
 func above(c []float64, lo, hi float64) (where float64, ok bool) {
 	return aboveIn(hull(c, lo, hi), lo, hi, maxHalvings)
 }
@@ -90,8 +89,8 @@ func product(a, b []float64) []float64 {
 	return out
 }
 
-// ideal is cp ρ T − p in units of p, which has the sign of cv = cp − p/(ρT): c and
-// rho are polynomials in t, where T = origin + t.
+// ideal is cp ρ T − p in units of p, which has the sign of cv = cp − p/(ρT): c and rho are
+// polynomials in t, where T = origin + t.
 func ideal(c, rho []float64, origin, p float64) []float64 {
 	out := product(product(c, rho), []float64{origin / p, 1 / p})
 	out[0]--

@@ -1,31 +1,30 @@
-// Package table holds a fluid that its user describes: cp and density against
-// temperature, from a data sheet or a measurement, as rows or as polynomials.
+// Package table holds a fluid that its user describes: cp and density against temperature,
+// from a data sheet or a measurement, as rows or as polynomials.
 //
-// Between two rows cp and density are cubics which pass through the rows with a
-// continuous slope and stay between their two values, and the enthalpy is the exact
-// integral of that cp. (Where the enthalpies of the rows are given as well, cp is a
-// parabola between them.) Two rows are a straight line. A single row stands
-// for a constant cp and density, over the range that its user states. Nothing is
-// extrapolated beyond the rows, nor beyond the stated range of a polynomial.
+// Between two rows cp and density are cubics which pass through the rows with a continuous
+// slope and stay between their two values, and the enthalpy is the exact integral of that
+// cp. (Where the enthalpies of the rows are given as well, cp is a parabola between them.)
+// Two rows are a straight line. A single row stands for a constant cp and density, over the
+// range that its user states. Nothing is extrapolated beyond the rows, nor beyond the
+// stated range of a polynomial.
 //
 // A liquid or a solid is taken for incompressible: cp and density do not depend on
-// pressure, cv is set to cp, and the enthalpy keeps its pressure term, the same
-// at every temperature so that (∂h/∂T)p is cp and nothing else:
+// pressure, cv is set to cp, and the enthalpy keeps its pressure term, the same at every
+// temperature so that (∂h/∂T)p is cp and nothing else:
 //
 //	h(T, p) = ∫ cp dT + (p − 101325 Pa) · (v − T dv/dT),
 //
-// the parenthesis taken in the middle of the range. A gas is tabulated at one
-// pressure; its density is scaled to others in proportion and
-// cp − cv = p/(ρT), as for an ideal gas.
+// the parenthesis taken in the middle of the range. A gas is tabulated at one pressure; its
+// density is scaled to others in proportion and cp − cv = p/(ρT), as for an ideal gas.
 //
 // A liquid boils where its user says so, or by the vapour pressures of its rows.
 //
-// Against exact functions the cubics converge with the third order of the distance
-// between rows, at an extremum with the second. What published rows leave open is
-// measured in the packages oil and solid.
+// Against exact functions the cubics converge with the third order of the distance between
+// rows, at an extremum with the second. What published rows leave open is measured in the
+// packages oil and solid.
 //
-// Not modelled: compressibility, a phase change within the range (a peak of
-// cp that stands for latent heat is a peak of cp here), composition.
+// Not modelled: compressibility, a phase change within the range (a peak of cp that stands
+// for latent heat is a peak of cp here), composition.
 package table
 
 import "heatreeve/thermo"
@@ -35,9 +34,8 @@ type Point struct {
 	T       float64 // K
 	Cp      float64 // J/(kg K)
 	Density float64 // kg/m³
-	// VapourPressure of a liquid in Pa, absolute. Zero means that none is known:
-	// rows without one may come before those with, where it is too low
-	// to matter, but not after.
+	// VapourPressure of a liquid in Pa, absolute. Zero means that none is known: rows
+	// without one may come before those with, where it is too low to matter, but not after.
 	VapourPressure float64
 }
 

@@ -60,10 +60,10 @@ func TestConformance(t *testing.T) {
 	}
 }
 
-// By hand: the secants of cp are 4 and 3, so the slope at 350 K is (100·4 + 50·3)/150 = 11/3
-// and that at 300 K (200·4 − 50·3)/150 = 13/3, at 450 K (250·3 − 100·4)/150 = 7/3
-// J/(kg K²); a cubic between two values of slopes d, e has the area of the trapezoid
-// and (d − e) ΔT²/12 beside it.
+// By hand: the secants of cp are 4 and 3, so the slope at 350 K is (100·4 + 50·3)/150 =
+// 11/3 and that at 300 K (200·4 − 50·3)/150 = 13/3, at 450 K (250·3 − 100·4)/150 = 7/3
+// J/(kg K²); a cubic between two values of slopes d, e has the area of the trapezoid and (d
+// − e) ΔT²/12 beside it.
 func TestEnthalpyIsExact(t *testing.T) {
 	f := mustNew(t, oil, Options{})
 	first := 50*2100 + (13./3-11./3)*2500/12
@@ -79,8 +79,8 @@ func TestEnthalpyIsExact(t *testing.T) {
 			t.Errorf("%g to %g K: %.12g J/kg, %v; want %g", tt.T1, tt.T2, got, err, tt.want)
 		}
 	}
-	// In the middle of the last stretch: the mean of the ends and (d − e) ΔT/8. The
-	// secants of density are both -0.8 kg/(m³ K), which is a straight line.
+	// In the middle of the last stretch: the mean of the ends and (d − e) ΔT/8. The secants
+	// of density are both -0.8 kg/(m³ K), which is a straight line.
 	p, err := f.At(400, 3e5)
 	if err != nil || math.Abs(p.Cp-(2350+(11./3-7./3)*100/8)) > 1e-9 || math.Abs(p.Density-820) > 1e-9 {
 		t.Errorf("at 400 K: %+v, %v; want cp 2366.67, density 820", p, err)
@@ -127,8 +127,8 @@ func TestRowsAreMet(t *testing.T) {
 	}
 }
 
-// A constant density has the pressure term v Δp; the middle of the rows, 375 K,
-// has 1/840 · (1 − 375 · 0.8/840) by hand.
+// A constant density has the pressure term v Δp; the middle of the rows, 375 K, has 1/840 ·
+// (1 − 375 · 0.8/840) by hand.
 func TestPressureTerm(t *testing.T) {
 	for _, tt := range []struct {
 		fluid thermo.Fluid
@@ -144,8 +144,8 @@ func TestPressureTerm(t *testing.T) {
 	}
 }
 
-// A table of an ideal gas agrees with the gas it was drawn from, also at another
-// pressure; cp is a parabola, which the cubics meet exactly where rows lie alike, and density
+// A table of an ideal gas agrees with the gas it was drawn from, also at another pressure;
+// cp is a parabola, which the cubics meet exactly where rows lie alike, and density
 // 101325/(287 T) at a row.
 func TestGasFollowsPressure(t *testing.T) {
 	f := mustNew(t, air(), Options{Phase: thermo.Gas, Pressure: 101325})
@@ -164,8 +164,8 @@ func TestGasFollowsPressure(t *testing.T) {
 	}
 }
 
-// The boiling point follows an exact Clausius-Clapeyron line, on which ln p is
-// straight over 1/T.
+// The boiling point follows an exact Clausius-Clapeyron line, on which ln p is straight
+// over 1/T.
 func TestBoilingByVapourPressure(t *testing.T) {
 	f := mustNew(t, boilingOil(), Options{})
 	if b := f.Bounds(); b.MinP != boils(350) {
@@ -253,8 +253,9 @@ func TestNewRefuses(t *testing.T) {
 		{"oil", "s", oil, Options{Enthalpies: []float64{0, 2e4, 3e5}}, "row 2: enthalpies of 0 and 20000 J/kg are not those of a cp of 2000 and 2200 J/(kg K) at 300 and 350 K"},
 		{"oil", "s", oil, Options{Enthalpies: []float64{0, 1e5, math.NaN()}}, "row 3: enthalpies of 100000 and NaN J/kg"},
 		{"oil", "s", oil, Options{Enthalpies: []float64{0, math.Inf(1), 1e9}}, "row 2: enthalpies of 0 and +Inf J/kg"},
-		// At every row cv is above zero: ρT is 630 kg K/m³ or more, p/(ρT) 159 or less. From row 2 on the
-		// density falls by (1 − u)³, early enough for ρT to come down to 558.
+		// At every row cv is above zero: ρT is 630 kg K/m³ or more, p/(ρT) 159 or less.
+		// From row 2 on the density falls by (1 − u)³, early enough for ρT to come down to
+		// 558.
 		{"oil", "s", dip, Options{Phase: thermo.Gas, Pressure: 1e5}, "row 2: on the way to row 3, at "},
 	} {
 		if f, err := New(tt.name, tt.source, tt.points, tt.opts); err == nil || !strings.Contains(err.Error(), tt.want) {

@@ -2,9 +2,9 @@ package table
 
 import "math"
 
-// vapour is the boiling point against pressure: 1/T over ln p, which is nearly
-// straight (Clausius-Clapeyron), as a monotone cubic through the rows. It
-// falls all along, so that one pressure has one boiling point.
+// vapour is the boiling point against pressure: 1/T over ln p, which is nearly straight
+// (Clausius-Clapeyron), as a monotone cubic through the rows. It falls all along, so that
+// one pressure has one boiling point.
 type vapour struct {
 	lowest, highest float64 // Pa, vapour pressures of the first and the last row that has one
 	first           float64 // K, of the first such row
@@ -12,8 +12,8 @@ type vapour struct {
 	inverse         []cubic // 1/K over ln Pa
 }
 
-// newVapour draws the curve through the rows that have a vapour pressure, or
-// returns nil where there are none.
+// newVapour draws the curve through the rows that have a vapour pressure, or returns nil
+// where there are none.
 func newVapour(points []Point) *vapour {
 	var x, y []float64
 	for _, p := range points {
@@ -31,10 +31,9 @@ func newVapour(points []Point) *vapour {
 	}
 }
 
-// boiling returns the boiling point in K at p in Pa. Above the vapour pressure of the
-// last row the liquid boils somewhere beyond the table: +Inf. Below
-// the lowest one all that is known is that it boils before that row's temperature,
-// which is returned.
+// boiling returns the boiling point in K at p in Pa. Above the vapour pressure of the last
+// row the liquid boils somewhere beyond the table: +Inf. Below the lowest one all that is
+// known is that it boils before that row's temperature, which is returned.
 func (v *vapour) boiling(p float64) float64 {
 	switch {
 	case !(p > v.lowest):
