@@ -9,10 +9,12 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
-	"heatreeve/thermo/aqueous"
+	"heatreeve/thermo/air"
 	"heatreeve/thermo/gas"
+	"heatreeve/thermo/named"
+	"heatreeve/thermo/oil"
+	"heatreeve/thermo/seawater"
 	"heatreeve/thermo/table"
-	"heatreeve/thermo/water"
 )
 
 // TestWorkedExamples works every row of testdata/worked-examples.csv, whose
@@ -20,15 +22,15 @@ import (
 func TestWorkedExamples(t *testing.T) {
 	fluids := workedFluids(t)
 	examples := records(t, "worked-examples.csv")
-	if len(examples) < 39 {
-		t.Errorf("%d examples, want 39", len(examples))
+	if len(examples) < 56 {
+		t.Errorf("%d examples, want 56", len(examples))
 	}
 	ran := 0
 	for _, r := range examples {
 		t.Run(r.text["id"], func(t *testing.T) {
-			f := fluids[r.text["fluid"]]
-			if f == nil {
-				t.Fatalf("no fluid %q", r.text["fluid"])
+			f, err := fluidOf(fluids, r.text["fluid"])
+			if err != nil {
+				t.Fatal(err)
 			}
 			mass := r.mass(t, f)
 			near(t, "mass", mass, r.number(t, "mass"), r.number(t, "tol_rel"))
@@ -99,6 +101,18 @@ func (r record) mass(t *testing.T, f thermo.Fluid) float64 {
 		return n * density()
 	case "m3/h":
 		return n / 3600 * density()
+	case "m3/s":
+		return n * density()
+	case "L/s":
+		return n / 1e3 * density()
+	case "L/min":
+		return n / 6e4 * density()
+	case "L/h":
+		return n / 3.6e6 * density()
+	case "hL/h":
+		return n / 3.6e4 * density()
+	case "kg/h":
+		return n / 3600
 	case "m3/min":
 		return n / 60 * density()
 	case "gpm":
@@ -126,6 +140,14 @@ func (r record) at(t *testing.T, f thermo.Fluid, T float64) thermo.Properties {
 	return s
 }
 
+// fluidOf is one of the examples' own fluids, else the fluid of that name.
+func fluidOf(own map[string]thermo.Fluid, name string) (thermo.Fluid, error) {
+	if f := own[name]; f != nil {
+		return f, nil
+	}
+	return named.Lookup(name)
+}
+
 func workedFluids(t *testing.T) map[string]thermo.Fluid {
 	t.Helper()
 	must := func(f thermo.Fluid, err error) thermo.Fluid {
@@ -135,45 +157,34 @@ func workedFluids(t *testing.T) map[string]thermo.Fluid {
 		return f
 	}
 	fluids := map[string]thermo.Fluid{
-		"water":                 water.Liquid(),
-		"steam":                 water.Steam(),
-		"dry air":               must(gas.DryAir(gas.Ideal)),
-		"flue gas":              must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal)),
-		"ethylene glycol 35 %":  must(aqueous.New("ethylene glycol", 0.35, 0)),
-		"propylene glycol 40 %": must(aqueous.New("propylene glycol", 0.40, 0)),
+		"dry air":  must(gas.DryAir(gas.Ideal)),
+		"flue gas": must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal)),
 		"engine oil": must(table.New("engine oil", "constant cp as in the example", []table.Point{{T: 353, Cp: 2131, Density: 850}},
 			table.Options{MinT: 300, MaxT: 400})),
-		"carbon steel": must(table.New("carbon steel", "EN 1993-1-2:2005, 3.4.1.2", carbonSteel(), table.Options{Phase: thermo.Solid})),
+		"methane by its reference equation":                        must(gas.New(map[string]float64{"CH4": 1}, gas.Reference)),
+		"carbon dioxide by its reference equation":                 must(gas.New(map[string]float64{"CO2": 1}, gas.Reference)),
+		"fuel oil of specific gravity 0.95 and Watson factor 11.5": must(oil.Petroleum(densityOf(0.95), 11.5, "fuel oil")),
+		"lubricating oil 880 kg/m3":                                must(oil.Petroleum(880, 0, "lubricating oil")),
+		"seawater 35 g/kg":                                         must(seawater.New(0.03516504)),
+		"moist air of 30 degC and 45 % relative humidity":          must(moist(thermo.RelativeHumidity, 0.45, 303.15)),
+		"moist air saturated at 2 degC":                            must(moist(thermo.RelativeHumidity, 1, 275.15)),
 	}
 	for _, s := range []string{"N2", "CH4", "CO2", "H2O", "O2"} {
 		fluids[s] = must(gas.New(map[string]float64{s: 1}, gas.Ideal))
 	}
-	for name, points := range thermalLiquids(t) {
-		fluids[name] = must(table.New(name, "testdata/thermal-liquids.csv", points, table.Options{}))
-	}
 	return fluids
 }
 
-// carbonSteel tabulates EN 1993-1-2:2005, 3.4.1.2 (from memory), for 20 °C to
-// 600 °C, every 10 K: cp = 425 + 0.773 t − 1.69·10⁻³ t² + 2.22·10⁻⁶ t³.
-func carbonSteel() []table.Point {
-	var out []table.Point
-	for t := 20.0; t <= 600; t += 10 {
-		out = append(out, table.Point{T: t + 273.15, Cp: 425 + t*(0.773+t*(-1.69e-3+t*2.22e-6)), Density: 7850})
-	}
-	return out
-}
+// densityOf turns a specific gravity at 60 °F into kg/m³.
+func densityOf(gravity float64) float64 { return gravity * 999.016 }
 
-func thermalLiquids(t *testing.T) map[string][]table.Point {
-	t.Helper()
-	out := map[string][]table.Point{}
-	for _, r := range records(t, "thermal-liquids.csv") {
-		name := r.text["fluid"]
-		out[name] = append(out[name], table.Point{
-			T: r.number(t, "T_K"), Cp: r.number(t, "cp_J_per_kgK"), Density: r.number(t, "rho_kg_per_m3"),
-		})
+// moist is the air whose humidity was measured at T and 1 atm.
+func moist(kind thermo.MoistureKind, value, T float64) (thermo.Fluid, error) {
+	w, err := air.HumidityRatio(thermo.Moisture{Kind: kind, Value: value}, T, 101325)
+	if err != nil {
+		return nil, err
 	}
-	return out
+	return air.Moist(w)
 }
 
 // record is a line of a table in testdata, by column name.
