@@ -19,7 +19,7 @@ type state struct {
 }
 
 // figures of one state; what a program does not say stays 0.
-type figures struct{ Cp, H, Rho, Cv, Freezing float64 }
+type figures struct{ Cp, H, Rho, Cv, Squeezed, Freezing float64 }
 
 // ask gives states to a Python program of Debian's and reads what it makes of them.
 func ask(t *testing.T, script, needs string, states []state) []figures {
@@ -61,6 +61,7 @@ for s in json.load(sys.stdin):
     beta = gsw.alpha_wrt_t_exact(SA, t, p)
     kappa = (gsw.rho_t_exact(SA, t, p + 10) - gsw.rho_t_exact(SA, t, p)) / (1e5 * rho)
     out.append({"cp": cp, "rho": rho, "cv": cp - s["T"] * beta**2 / (rho * kappa),
+                "squeezed": rho / gsw.rho_t_exact(SA, t, 0),
                 "h": gsw.enthalpy_t_exact(SA, t, p) - gsw.enthalpy_t_exact(SA, 20, 0),
                 "freezing": gsw.t_freezing(SA, 0, 0) + 273.15})
 print(json.dumps(out))
@@ -79,6 +80,7 @@ func TestAgainstTEOS10AtRandom(t *testing.T) {
 		cp, density := f.Uncertainty(s.T, s.P)
 		got.check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
 		got.check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
+		got.check(t, s, "rise of density by pressure", a.Density/mustAt(t, f, s.T, atmosphere).Density/r.Squeezed-1, 7.5e-5)
 		got.check(t, s, "cv", a.Cv/r.Cv-1, 5e-3)
 		got.check(t, s, "h in J/kg, beyond 0.30 % of the warming", max(math.Abs(a.Enthalpy-r.H)-3e-3*a.Cp*math.Abs(s.T-zero-base), 0), 0.016*(s.P-atmosphere)/1e3)
 		lo, _ := f.Span(s.P)
