@@ -1,6 +1,35 @@
 package thermo
 
-import "math"
+import (
+	"fmt"
+	"math"
+)
+
+// RangeError says that a state lies outside a fluid's range, and which bound it
+// passed. It is returned by [Fluid.At].
+type RangeError struct {
+	Fluid    string  // name of the fluid
+	Quantity string  // "temperature", "pressure"
+	Value    float64 // K or Pa
+	Bound    float64 // K or Pa
+	Below    bool    // true where Value < Bound and should not be
+	Why      string  // what the bound is: "freezing point", "saturation", "range of IAPWS-IF97 region 1"
+}
+
+func (e *RangeError) Error() string {
+	side := "above"
+	if e.Below {
+		side = "below"
+	}
+	return fmt.Sprintf("%s: %s %s is %s %s (%s)", e.Fluid, e.Quantity, e.show(e.Value), side, e.show(e.Bound), e.Why)
+}
+
+func (e *RangeError) show(v float64) string {
+	if e.Quantity == "temperature" {
+		return fmt.Sprintf("%.6g °C", v-273.15)
+	}
+	return fmt.Sprintf("%.6g kPa", v/1e3)
+}
 
 // Check returns a *[RangeError] when T in K or p in Pa lies outside the box b or
 // is not a finite number, and nil otherwise. why says what the box is, such as

@@ -1,0 +1,52 @@
+// Package thermo holds the fluids and the heat equations: pure functions in
+// SI units, without clock, file, logger or goroutine.
+//
+// A fluid family has a package of its own below this one and implements
+// [Fluid]; package named finds one by the name that an engineer writes. The heat
+// of an open stream between two states is
+//
+//	Q = m · (h(T2, p2) − h(T1, p1))
+//
+// with h from the fluid's own formulation, never from a constant cp unless a
+// user's own table says so. A closed vessel takes up ΔU at constant volume, ΔH at
+// constant pressure. Every fluid knows its range and refuses outside it with a
+// [*RangeError]; nothing is clamped or extrapolated.
+//
+// # Which formulation for which fluid
+//
+// Range, and the largest deviation found against which reference. Each package
+// says more, and its tests hold the figures.
+//
+//   - water, steam: IAPWS-IF97, all regions, 0 °C to 2000 °C and 100 MPa. Every
+//     published value to its digits; against IAPWS-95 cp 0.12 %, near the critical
+//     point more.
+//   - one gas, dry air: the reference equation of state of 12 gases and air (package
+//     helmholtz), to 1500 K and 100 MPa. To all six digits of 162 states worked
+//     elsewhere.
+//   - gas mixtures, flue gas: NASA-9 polynomials of 22 species with the residuals of
+//     Peng and Robinson, 200 K to 2000 K and 100 bar. Against reference equations
+//     above 1.3 critical temperatures cp 2.0 %, density 2.6 %; thin gases against
+//     NIST-JANAF 0.2 %, some polyatomic ones up to 2 %, methane 5 % at 1500 K.
+//   - moist air: the psychrometric relations of ASHRAE, -50 °C to 200 °C and 300 kPa.
+//     Against IAPWS G8-10 cp 0.2 % to 30 °C, 1.7 % at 60 °C saturated; density 0.16 %.
+//   - glycols, alcohols, brines, ammonia in water: Melinder's polynomials, from the
+//     freezing point to 100 °C (glycols), 40 °C or 30 °C. Against ASHRAE, Laliberté and
+//     IAPWS G4-01 cp 0.4 % to 4.6 %, density 0.05 % to 0.9 %.
+//   - seawater: Sharqawy et al. and Nayar et al., 0 °C to 120 °C, 120 g/kg, 12 MPa.
+//     Against TEOS-10 cp 0.30 %, density 0.055 %.
+//   - liquid food: Choi and Okos by composition, 0 °C to 150 °C. Its water against
+//     IAPWS-IF97: cp 2.1 % low at 0 °C.
+//   - petroleum: Kesler and Lee, or Cragoe, with ASTM D1250, -18 °C to 150 °C. Four
+//     correlations differ by up to 6.4 %.
+//   - heat-transfer liquids: their makers' tables; solids: NIST-JANAF, Eurocodes and
+//     handbook figures.
+//   - what its user describes by rows or polynomials, with a stated source.
+//
+// # Not modelled
+//
+// Phase change and the heat of it, metastable states, reaction and dissociation,
+// the pairing of NO2 (refused where it tells), acid dew points, adsorption, frost,
+// inhibitors and other additives, entrained gas or solids, melting fats, pour
+// points, kinetic and potential energy. Liquids without a published
+// compressibility have cv set to cp.
+package thermo
