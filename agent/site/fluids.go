@@ -38,6 +38,7 @@ var kinds = sync.OnceValue(func() []kind {
 		ks = append(ks, kind{solute, []string{"uncertainty", "by"}, solution(solute)})
 	}
 	return append(ks,
+		kind{"seawater", nil, saltWater},
 		kind{"gas", []string{"by", "model"}, mixture},
 		kind{"flue gas", []string{"model"}, flueGas},
 		kind{"moist air", nil, moistAir},

@@ -23,6 +23,7 @@ func TestParseFluid(t *testing.T) {
 		{"{moist air: {relative humidity: 50 %, at: 25 °C}}", "moist air 9.881 g/kg"},
 		{"{moist air: {dew point: 12 °C}}", "moist air 8.73 g/kg"},
 		{"{food: {water: 90 %, carbohydrate: 10 %}}", "food: {water: 90 %, carbohydrate: 10 %}"},
+		{"{seawater: 35 g/kg}", "seawater 35 g/kg"},
 		{"{petroleum: {density: 870 kg/m3}}", "petroleum 870 kg/m³"},
 		{"{petroleum: {density: 0.96 kg/L, watson: 11.4, group: fuel oil}}", "fuel oil 960 kg/m³, Watson 11.4"},
 		{"{polynomial: {source: a sheet, phase: liquid, cp: [1880, 3.6], density: [881, -0.65], range: [20 °C, 300 °C]}}", "fluid"},

@@ -3,6 +3,7 @@ package site
 import (
 	"heatreeve/thermo"
 	"heatreeve/thermo/aqueous"
+	"heatreeve/thermo/seawater"
 	"heatreeve/thermo/unit"
 )
 
@@ -38,4 +39,14 @@ func solution(solute string) func(*reader, declaration) thermo.Fluid {
 		}
 		return f
 	}
+}
+
+// saltWater reads seawater by its absolute salinity, such as 35 g/kg.
+func saltWater(_ *reader, d declaration) thermo.Fluid {
+	q, ok := d.v.quantity(unit.Ratio)
+	if !ok {
+		return nil
+	}
+	f, err := seawater.New(q.SI())
+	return d.v.made(f, err)
 }

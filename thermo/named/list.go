@@ -35,11 +35,11 @@ func List() []Entry {
 }
 
 // Range writes bounds for people: "0 to 350 °C, 0.611 to 100000 kPa". A pressure that
-// may be anything above zero has no lower end.
+// may be anything above zero, or above a few pascals, has no lower end.
 func Range(b thermo.Bounds) string {
-	low := "up"
-	if b.MinP > 0 {
-		low = figure(b.MinP / 1e3)
+	low := figure(b.MinP / 1e3)
+	if low == "0" {
+		low = "up"
 	}
 	return fmt.Sprintf("%s to %s °C, %s to %s kPa", figure(b.MinT-273.15), figure(b.MaxT-273.15), low, figure(b.MaxP/1e3))
 }

@@ -61,6 +61,7 @@ func TestLookupIsLenient(t *testing.T) {
 		{"CO₂", "carbon dioxide"}, {"sulphur dioxide", "sulfur dioxide"}, {"water vapor", "steam"}, {"H₂O", "steam"}, {"butane", "n-butane"},
 		{"liquid NH3", "liquid ammonia"}, {"Liquid Ammonia", "liquid ammonia"},
 		{"moist air", "moist air"}, {"moist air 8 g/kg", "moist air 8 g/kg"}, {"Moist-Air 0.008 kg/kg", "moist air 8 g/kg"},
+		{"seawater 35 g/kg", "seawater 35 g/kg"}, {"Sea water 3.5 %", "seawater 35 g/kg"}, {"sea-water 35‰", "seawater 35 g/kg"},
 		{"milk", "whole milk"}, {"Skimmed milk", "skim milk"}, {"copper", "copper"},
 		{"petroleum 870 kg/m3", "petroleum 870 kg/m³"}, {"Fuel Oil 0.9 kg/L", "fuel oil 900 kg/m³"}, {"terphenyl", "modified terphenyl"}, {"Mineral Oil B", "mineral oil B"}, {"steel", "carbon steel"},
 	} {

@@ -13,6 +13,7 @@ import (
 	"heatreeve/thermo/gas"
 	"heatreeve/thermo/gas/helmholtz"
 	"heatreeve/thermo/oil"
+	"heatreeve/thermo/seawater"
 	"heatreeve/thermo/solid"
 	"heatreeve/thermo/unit"
 	"heatreeve/thermo/water"
@@ -58,7 +59,7 @@ func (w *word) form() string {
 
 // words are all names, family by family.
 var words = sync.OnceValue(func() []*word {
-	return slices.Concat(waters(), gases(), liquefied(), airs(), solutions(), foods(), petroleums(), oils(), solids())
+	return slices.Concat(waters(), gases(), liquefied(), airs(), solutions(), seas(), foods(), petroleums(), oils(), solids())
 })
 
 // otherwise finds what a family calls by more names than it lists.
@@ -139,6 +140,13 @@ func solutions() []*word {
 		})
 	}
 	return ws
+}
+
+func seas() []*word {
+	return []*word{{
+		name: "seawater", dimension: unit.Ratio, sample: "35 g/kg",
+		make: func(s strength) (thermo.Fluid, error) { return seawater.New(s.SI()) },
+	}}
 }
 
 func foods() []*word { return listed(food.Products(), food.Product) }

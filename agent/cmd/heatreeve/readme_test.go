@@ -115,3 +115,68 @@ func TestReadmeAgreesWithTheProgram(t *testing.T) {
 		}
 	}
 }
+
+// The commands that the README shows with their output print just that.
+func TestReadmeTranscripts(t *testing.T) {
+	ran := 0
+	for i, block := range strings.Split(readme(t), "```") {
+		if i%2 == 0 || !strings.HasPrefix(block, "\n$ heatreeve ") {
+			continue
+		}
+		for _, session := range strings.Split(block, "\n$ heatreeve ")[1:] {
+			line, want, _ := strings.Cut(session, "\n")
+			status, out, errs := invoke(words(line)...)
+			if status != exitGood || errs != "" || strings.TrimSpace(out) != strings.TrimSpace(want) {
+				t.Errorf("heatreeve %s: status %d, %s, prints\n%s\nthe README shows\n%s", line, status, errs, out, want)
+			}
+			ran++
+		}
+	}
+	if ran < 3 {
+		t.Errorf("%d commands with their output, want 3 or more", ran)
+	}
+}
+
+// words parts a line as a shell does that knows single quotes.
+func words(line string) []string {
+	var all []string
+	for i, part := range strings.Split(line, "'") {
+		if i%2 == 1 {
+			all = append(all, part)
+			continue
+		}
+		all = append(all, strings.Fields(part)...)
+	}
+	return all
+}
+
+// The fluids that the README declares are fluids.
+func TestReadmeFluidsAreGood(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "### Fluids")
+	section, _, closed := strings.Cut(rest, "\n## ")
+	if !ok || !closed {
+		t.Fatal("the README has no section on fluids")
+	}
+	declared := regexp.MustCompile("`(\\{[^`]+\\})`").FindAllStringSubmatch(section, -1)
+	if len(declared) < 8 {
+		t.Errorf("%d declarations, want 8 or more", len(declared))
+	}
+	for _, m := range declared {
+		if text := strings.Replace(m[1], ", ...", ", [200 °C, 2.5 kJ/(kg K), 751 kg/m3]", 1); !good(text) {
+			_, err := site.ParseFluid(text)
+			t.Errorf("%s: %v", text, err)
+		}
+	}
+	for _, m := range regexp.MustCompile(`\*\*Fluids\*\* that have a name[^.]*\.`).FindAllString(readme(t), -1) {
+		for _, name := range regexp.MustCompile("`([^`]+)`").FindAllStringSubmatch(m, -1) {
+			if !good(name[1]) {
+				t.Errorf("the README names %q, which is no fluid", name[1])
+			}
+		}
+	}
+}
+
+func good(fluid string) bool {
+	_, err := site.ParseFluid(fluid)
+	return err == nil
+}
