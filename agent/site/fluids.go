@@ -79,7 +79,7 @@ func (r *reader) readFluids(o object) {
 	}
 	for _, e := range v.entries() {
 		e.key.label(e.name)
-		if _, err := named.Lookup(e.name); err == nil {
+		if named.Listed(e.name) {
 			e.key.fault("is built in; choose another name for a fluid of your own")
 			continue
 		}

@@ -21,6 +21,26 @@ import (
 // *[UnknownError]; that of a name without its strength, or with a wrong one, says how
 // it is written.
 func Lookup(name string) (thermo.Fluid, error) {
+	f, err := lookup(name)
+	if _, unknown := err.(*UnknownError); !unknown {
+		return f, err
+	}
+	for _, find := range otherwise {
+		if f, err := find(strings.TrimSpace(name)); err == nil {
+			return f, nil
+		}
+	}
+	return nil, err
+}
+
+// Listed tells whether the name is one of [List], with its strength where it wants one.
+func Listed(name string) bool {
+	_, err := lookup(name)
+	return err == nil
+}
+
+// lookup is Lookup among the names of the list.
+func lookup(name string) (thermo.Fluid, error) {
 	if w, ok := index().plain[fold(name)]; ok {
 		return w.make(strength{})
 	}
@@ -38,11 +58,6 @@ func Lookup(name string) (thermo.Fluid, error) {
 	}
 	if w, ok := index().strong[fold(name)]; ok {
 		return nil, fmt.Errorf("%s wants its strength as well: write %q%s", w.name, w.example(), w.hint())
-	}
-	for _, find := range otherwise {
-		if f, err := find(strings.TrimSpace(name)); err == nil {
-			return f, nil
-		}
 	}
 	return nil, &UnknownError{name}
 }

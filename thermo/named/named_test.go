@@ -19,6 +19,9 @@ func TestListIsTrue(t *testing.T) {
 			t.Errorf("%q: %v", e.Example, err)
 			continue
 		}
+		if !Listed(e.Example) || Listed(e.Example+" or the like") {
+			t.Errorf("%q: Listed is wrong", e.Example)
+		}
 		if e.Form == "" || e.Source == "" || e.Source != f.Source() || e.Phase != f.Phase() || strings.Contains(e.Source, "\n") {
 			t.Errorf("%+v of %s", e, f.Name())
 		}
