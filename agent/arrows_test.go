@@ -35,7 +35,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo/unit"},
+	"agent":               {"agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water"},
 	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit"},
 	"deploy":              {},
 }

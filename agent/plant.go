@@ -17,6 +17,7 @@ func plantOf(s *site.Site) loads.Config {
 	for _, l := range s.Loads {
 		cfg.Loads = append(cfg.Loads, loads.Load{Name: l.Name, Stream: streamOf(l.Stream)})
 	}
+	tabulate(s, cfg.Loads)
 	return cfg
 }
 

@@ -3,12 +3,13 @@ package loads
 import (
 	"testing"
 
+	"heatreeve/thermo"
 	"heatreeve/thermo/water"
 )
 
-// waterPlant is n loads on water by volume, each with a flow, two temperatures and a
+// waterPlant is n loads on the liquid f by volume, each with a flow, two temperatures and a
 // pressure of its own, all of them with an accuracy.
-func waterPlant(n int) Config {
+func waterPlant(n int, f thermo.Fluid) Config {
 	cfg := Config{Grid: second}
 	for i := range n {
 		k := 4 * i
@@ -16,7 +17,7 @@ func waterPlant(n int) Config {
 			cfg.Tags = append(cfg.Tags, Tag{MaxAge: minute, Accuracy: a})
 		}
 		cfg.Loads = append(cfg.Loads, Load{Stream: Stream{
-			Fluid: water.Liquid(), FlowKind: VolumeFlow, Flow: FromTag(k), Inlet: FromTag(k + 1), Outlet: FromTag(k + 2),
+			Fluid: f, FlowKind: VolumeFlow, Flow: FromTag(k), Inlet: FromTag(k + 1), Outlet: FromTag(k + 2),
 			Pressure: FromTag(k + 3), OutletPressure: FromTag(k + 3), Gives: true, Margin: 5,
 		}})
 	}
@@ -24,10 +25,16 @@ func waterPlant(n int) Config {
 }
 
 // BenchmarkBeat is one beat of a plant of 1,000 water loads where every tag has a new
-// value: 4,000 readings in, 1,000 duties with their uncertainties booked.
+// value: 4,000 readings in, 1,000 duties with their uncertainties booked. It is worked
+// by the exact equations, and from a table.
 func BenchmarkBeat(b *testing.B) {
+	b.Run("exact", func(b *testing.B) { beats(b, water.Liquid()) })
+	b.Run("table", func(b *testing.B) { beats(b, water.Tabulate(water.Liquid(), 273.15, 433.15, 1e5, 17e5)) })
+}
+
+func beats(b *testing.B, f thermo.Fluid) {
 	const n = 1000
-	e, err := New(waterPlant(n))
+	e, err := New(waterPlant(n, f))
 	if err != nil {
 		b.Fatal(err)
 	}
