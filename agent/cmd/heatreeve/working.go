@@ -21,12 +21,12 @@ func (h *hand) tell(w io.Writer) error {
 		T, p, h, rho float64
 	}{{"inlet", x.Inlet, x.Pressure, r.Inlet.Enthalpy, r.Inlet.Density}, {"outlet", x.Outlet, x.OutletPressure, r.Outlet.Enthalpy, r.Outlet.Density}} {
 		t.line("  "+e.name, fmt.Sprintf("%s °C = %s K, %s kPa absolute:", celsius(e.T), figures(e.T, 6), figures(e.p/1e3, 6)),
-			fmt.Sprintf("h = %s kJ/kg, ρ = %s kg/m3", minus(decimals(e.h/1e3, n)), figures(e.rho, 6)))
+			fmt.Sprintf("h = %s kJ/kg, ρ = %s kg/m3", decimals(e.h/1e3, n), figures(e.rho, 6)))
 	}
 	fmt.Fprint(w, t)
 	fmt.Fprintf(w, "  mass flow  %s\n", h.massFlow())
-	fmt.Fprintf(w, "  duty       %s kg/s × (%s − %s) kJ/kg\n", figures(r.MassFlow, 6), minus(decimals(r.Outlet.Enthalpy/1e3, n)), subtrahend(decimals(r.Inlet.Enthalpy/1e3, n)))
-	fmt.Fprintf(w, "             = %s kg/s × %s kJ/kg = %s kW\n", figures(r.MassFlow, 6), minus(decimals(rise, n)), minus(h.kilowatts(r.Duty, 1)))
+	fmt.Fprintf(w, "  duty       %s kg/s × (%s − %s) kJ/kg\n", figures(r.MassFlow, 6), decimals(r.Outlet.Enthalpy/1e3, n), subtrahend(decimals(r.Inlet.Enthalpy/1e3, n)))
+	fmt.Fprintf(w, "             = %s kg/s × %s kJ/kg = %s kW\n", figures(r.MassFlow, 6), decimals(rise, n), h.kilowatts(r.Duty, 1))
 	fmt.Fprintf(w, "  mean cp    %s\n\n", h.mean())
 	if r.Duty == 0 {
 		fmt.Fprint(w, "The stream neither gives heat nor takes it.\n")
@@ -89,6 +89,9 @@ func (h *hand) massFlow() string {
 	case loads.MolarFlow:
 		return fmt.Sprintf("%v = %s mol/s × %s kg/mol = %s", h.flow, si, figures(h.fluid.MolarMass(), 6), m)
 	}
+	if h.flow.Unit.Factor == 1 {
+		return m
+	}
 	return fmt.Sprintf("%v = %s", h.flow, m)
 }
 
@@ -98,16 +101,13 @@ func (h *hand) mean() string {
 	if dT == 0 {
 		return value + ", that of the one temperature"
 	}
-	return fmt.Sprintf("%s kJ/kg / %s K = %s", minus(decimals(rise, h.places())), minus(figures(dT, 6)), value)
+	return fmt.Sprintf("%s kJ/kg / %s K = %s", decimals(rise, h.places()), figures(dT, 6), value)
 }
 
 // subtrahend is a number behind a minus sign.
 func subtrahend(s string) string {
 	if strings.HasPrefix(s, "-") {
-		return "(" + minus(s) + ")"
+		return "(" + s + ")"
 	}
 	return s
 }
-
-// minus writes a negative number as print does.
-func minus(s string) string { return strings.Replace(s, "-", "−", 1) }
