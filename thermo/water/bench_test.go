@@ -92,16 +92,29 @@ func BenchmarkSaturationTemperature(b *testing.B) {
 func BenchmarkTabulate(b *testing.B) {
 	for _, f := range forms {
 		b.Run(f.fluid, func(b *testing.B) {
-			var size int
+			var t thermo.Fluid
 			for b.Loop() {
 				x := f.box
-				size = Tabulate(f.exact, x[0], x[1], x[2], x[3]).(*table).bytes()
+				t = Tabulate(f.exact, x[0], x[1], x[2], x[3])
 			}
-			b.ReportMetric(float64(size), "B/table")
+			b.ReportMetric(float64(bytesOf(t)), "B/table")
 		})
 	}
 }
 
-func (t *table) bytes() int {
-	return len(t.columns)*int(unsafe.Sizeof(column{})) + cap(t.cells)*int(unsafe.Sizeof(cell{}))
+// bytesOf is what a table holds.
+func bytesOf(f thermo.Fluid) (n int) {
+	switch t := f.(type) {
+	case *liquidTable:
+		n = len(t.columns) * int(unsafe.Sizeof(t.columns[0]))
+		for _, c := range t.columns {
+			n += len(c.cells) * int(unsafe.Sizeof(liquidCell{}))
+		}
+	case *steamTable:
+		n = len(t.columns) * int(unsafe.Sizeof(t.columns[0]))
+		for _, c := range t.columns {
+			n += len(c.cells) * int(unsafe.Sizeof(steamCell{}))
+		}
+	}
+	return n
 }
