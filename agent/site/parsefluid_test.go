@@ -3,6 +3,7 @@ package site
 import (
 	"errors"
 	"fmt"
+	"math"
 	"strings"
 	"testing"
 )
@@ -29,11 +30,24 @@ func TestParseFluid(t *testing.T) {
 		{"{polynomial: {source: a sheet, phase: liquid, cp: [1880, 3.6], density: [881, -0.65], range: [20 °C, 300 °C]}}", "fluid"},
 		{"gas: {O2: 100 %}", "oxygen"},
 		{"table:\n  source: a sheet\n  phase: solid\n  points: [[0 °C, 900 J/(kg K), 2000 kg/m3], [100 °C, 950 J/(kg K), 1990 kg/m3]]\n", "fluid"},
+		{"{table: {source: a sheet, phase: liquid, points: [[20 °C, 1.9 kJ/(kg K), 868 kg/m3, 1 kPa], [200 °C, 2.5 kJ/(kg K), 751 kg/m3, 90 kPa]]}}", "fluid"},
 	} {
 		f, err := ParseFluid(tt.text)
 		if err != nil || f.Name() != tt.name {
 			t.Errorf("ParseFluid(%q) = %v, %v; want %q", tt.text, f, err, tt.name)
 		}
+	}
+}
+
+// A liquid boils where the vapour pressure of its table comes up to the pressure: at
+// 90 kPa, that is in the last row.
+func TestTableBoilsByItsVapourPressure(t *testing.T) {
+	f, err := ParseFluid("{table: {source: a sheet, phase: liquid, points: [[20 °C, 1.9 kJ/(kg K), 868 kg/m3, 1 kPa], [200 °C, 2.5 kJ/(kg K), 751 kg/m3, 90 kPa]]}}")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, hi := f.Span(90e3); math.Abs(hi-473.15) > 1e-6 {
+		t.Errorf("boils at %g K under 90 kPa, want 473.15 K", hi)
 	}
 }
 

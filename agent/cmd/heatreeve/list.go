@@ -45,6 +45,14 @@ func tellFluids(w io.Writer, asJSON bool) error {
 
 const ownFluids = `
 Letter case, spaces and hyphens make no difference. Any other fluid is written as in the fluids of a site file:
-  '{gas: {N2: 79 %, O2: 21 %}}'
+  '{propylene glycol: 30 %, by: volume, uncertainty: 1 %}'
+  '{gas: {N2: 79 %, O2: 21 %}, by: mole, model: ideal}'
+  '{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}}'
+  '{flue gas: {elements: {C: 86 %, H: 13 %, S: 1 %}, oxygen: 3 %, air humidity: 8 g/kg}}'
+  '{moist air: {relative humidity: 50 %, at: 25 °C, pressure: 100.9 kPa}}'
+  '{seawater: 35 g/kg}'
+  '{food: {water: 87.3 %, fat: 3.9 %, protein: 3.3 %, carbohydrate: 4.7 %, ash: 0.8 %}}'
+  '{petroleum: {density: 870 kg/m3, watson: 11.8, group: crude oil}}'
   '{table: {source: data sheet, phase: liquid, points: [[20 °C, 1.9 kJ/(kg K), 868 kg/m3], [200 °C, 2.5 kJ/(kg K), 751 kg/m3]]}}'
+  '{polynomial: {source: data sheet, phase: liquid, cp: [1880, 3.6], density: [881, -0.65], range: [20 °C, 300 °C]}}'
 `
