@@ -94,6 +94,10 @@ func (r *reader) readFluids(o object) {
 // fluid finds the fluid that a load names: one of the file, or one that is built in,
 // which goes by its usual name.
 func (r *reader) fluid(v value) (string, thermo.Fluid) {
+	if v.node.Kind == yaml.MappingNode {
+		v.fault("want the name of a fluid, found a mapping; declare it under fluids, and name it here")
+		return "", nil
+	}
 	s, ok := v.text()
 	if !ok {
 		return "", nil
@@ -164,28 +168,4 @@ func goesWith(key string) []string {
 		}
 	}
 	return names
-}
-
-// ParseFluid reads a fluid as it stands in a site file, for a command line: a name such
-// as "water" or "propylene glycol 32 %", or the YAML of a declaration such as
-// "{gas: {N2: 79 %, O2: 21 %}}". The error is a [Faults] where it is YAML. A gauge
-// pressure is refused: there is no barometer.
-func ParseFluid(text string) (thermo.Fluid, error) {
-	if !strings.ContainsAny(text, "{:\n") {
-		return named.Lookup(text)
-	}
-	s := &scope{file: "fluid"}
-	if root := s.document([]byte(text)); len(s.faults) == 0 {
-		v := value{scope: s, node: root}
-		r := &reader{site: &Site{}, file: s.file}
-		f := r.declare("fluid", v)
-		if r.gauge {
-			v.fault("has a gauge pressure; write the absolute one, such as 3 bar")
-		}
-		if len(s.faults) == 0 && f != nil {
-			return f, nil
-		}
-	}
-	s.faults.sort()
-	return nil, s.faults
 }

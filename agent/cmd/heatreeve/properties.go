@@ -44,15 +44,19 @@ func runProperties(_ context.Context, c *call) error {
 	if err != nil {
 		return err
 	}
+	return tellProperties(c.stdout, f, points, *asJSON)
+}
+
+func tellProperties(w io.Writer, f thermo.Fluid, points []point, asJSON bool) error {
 	switch {
-	case *asJSON && len(points) == 1:
-		return printJSON(c.stdout, points[0])
-	case *asJSON:
-		return printJSON(c.stdout, points)
+	case asJSON && len(points) == 1:
+		return printJSON(w, points[0])
+	case asJSON:
+		return printJSON(w, points)
 	case len(points) == 1:
-		return tellPoint(c.stdout, f, points[0])
+		return tellPoint(w, f, points[0])
 	}
-	return tellPoints(c.stdout, f, points)
+	return tellPoints(w, f, points)
 }
 
 // point is one state with its properties, as --json prints it.
