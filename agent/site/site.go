@@ -7,6 +7,9 @@
 // what is allowed. Nothing is defaulted without being described here, and
 // nothing is dropped.
 //
+// A stream's fluid is one that the file declares, by one of the kinds that [Keys] lists
+// under "fluids.*", or any that package named knows. [ParseFluid] reads one by itself.
+//
 // A quantity is written with its unit and read by package unit. A gauge pressure
 // becomes absolute here, with the barometer of the site. Names of tags, loads and
 // fluids end up as metric labels: they are printable, at most 64 bytes long and
