@@ -122,9 +122,3 @@ func (f steam) Balance(T, p float64) (thermo.Balance, error) {
 func part(s thermo.Properties, err error) (thermo.Balance, error) {
 	return thermo.Balance{Enthalpy: s.Enthalpy, Cp: s.Cp, Density: s.Density}, err
 }
-
-// Uncertainty is to be measured.
-func (liquid) Uncertainty(T, p float64) (cp, density float64) { return 0.001, 0.00025 }
-
-// Uncertainty is to be measured.
-func (steam) Uncertainty(T, p float64) (cp, density float64) { return 0.0025, 0.0005 }
