@@ -9,6 +9,7 @@ package named
 import (
 	"fmt"
 	"regexp"
+	"slices"
 	"strings"
 	"unicode"
 
@@ -57,7 +58,7 @@ func lookup(name string) (thermo.Fluid, error) {
 		}
 	}
 	if w, ok := index().strong[fold(name)]; ok {
-		return nil, fmt.Errorf("%s wants its strength as well: write %q%s", w.name, w.example(), w.hint())
+		return nil, fmt.Errorf("%s wants its %s as well: write %q%s", w.name, w.asks(), w.example(), w.hint())
 	}
 	return nil, &UnknownError{name}
 }
@@ -83,25 +84,40 @@ func Names() []string {
 	return all
 }
 
-// Near lists the names that name may have been meant to be, nearest first; it is
-// empty where there is none.
+// Near lists the names that name may have been meant to be: those of which it is a part,
+// and those a few keystrokes away, nearest first. It is empty where there is none.
 func Near(name string) []string {
-	if guess := nearest(name); len(guess) > 0 {
+	bare := fold(name)
+	if guess := guesses(bare); len(guess) > 0 {
 		return guess
 	}
-	if i := strings.IndexAny(name, "0123456789"); i > 0 {
-		return nearest(name[:i])
+	if i := strings.IndexAny(bare, "0123456789"); i >= leastPart {
+		return guesses(bare[:i])
 	}
 	return nil
 }
 
-func nearest(name string) []string {
+func guesses(bare string) []string {
+	const most = 5
+	var keys []string
+	for _, key := range index().keys {
+		if len(bare) >= leastPart && strings.Contains(key, bare) {
+			keys = append(keys, key)
+		}
+	}
+	all := examples(append(keys, near.Names(bare, index().keys)...))
+	return all[:min(most, len(all))]
+}
+
+// leastPart is how many letters of a name are worth a guess.
+const leastPart = 3
+
+// examples are the names of folded ones, each once.
+func examples(keys []string) []string {
 	var out []string
-	seen := make(map[string]bool)
-	for _, key := range near.Names(fold(name), index().keys) {
-		if w := index().of(key); !seen[w.example()] {
-			seen[w.example()] = true
-			out = append(out, w.example())
+	for _, key := range keys {
+		if e := index().of(key).example(); !slices.Contains(out, e) {
+			out = append(out, e)
 		}
 	}
 	return out

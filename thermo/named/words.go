@@ -25,6 +25,14 @@ func (w *word) example() string {
 	return w.name + " " + w.sample
 }
 
+// asks is what must follow the name.
+func (w *word) asks() string {
+	if w.dimension == unit.Density {
+		return "density at 15 °C"
+	}
+	return "strength"
+}
+
 // hint tells of the other way to write the strength.
 func (w *word) hint() string {
 	if w.volume {
