@@ -2,6 +2,7 @@ package water_test
 
 import (
 	"fmt"
+	"math"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/water"
@@ -44,4 +45,32 @@ func ExampleSaturationTemperature() {
 	// 99.97 °C, <nil>
 	// 158.83 °C, <nil>
 	// -273.15 °C, water: pressure 30000 kPa is above 22064 kPa (range of the saturation line)
+}
+
+// Above the critical pressure water does not boil: one stream from feed water to
+// live steam.
+func ExampleLiquid_supercritical() {
+	w := water.Liquid()
+	q, err := thermo.StreamHeat(w, 1, 573.15, 28e6, 873.15, 27e6)
+	fmt.Printf("%.1f kW per kg/s, %v\n", q/1e3, err)
+
+	_, err = w.At(873.15, 20e6)
+	fmt.Println(err)
+	// Output:
+	// 2145.6 kW per kg/s, <nil>
+	// water: temperature 600 °C is above 365.746 °C (saturation lies there: in between water boils and its heat is latent; beyond, the fluid to ask for is "steam")
+}
+
+func ExampleTabulate() {
+	exact := water.Liquid()
+	fast := thermo.BalanceOf(water.Tabulate(exact, 273.15, 423.15, 1e5, 16e5))
+	b, err := fast(333.15, 6e5)
+	s, _ := exact.At(333.15, 6e5)
+	fmt.Printf("h off by less than 2e-7: %v, %v\n", math.Abs(b.Enthalpy/s.Enthalpy-1) < 2e-7, err)
+
+	_, err = fast(433.15, 6e5)
+	fmt.Println(err)
+	// Output:
+	// h off by less than 2e-7: true, <nil>
+	// water: pressure 600 kPa is below 618.139 kPa (saturation lies there: in between water boils and its heat is latent; beyond, the fluid to ask for is "steam")
 }

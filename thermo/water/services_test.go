@@ -59,7 +59,7 @@ func TestLiveAgainstIAPWS95(t *testing.T) {
 		h := math.Abs(s.got.Enthalpy - s.want.Enthalpy)
 		allowed := tolerance[r]
 		if r == 3 {
-			allowed += 0.06 * s.got.Cp
+			allowed += 0.08 * s.got.Cp
 		}
 		w := found[r]
 		found[r] = worst{max(w.cp, cp), max(w.cv, math.Abs(s.got.Cv/s.want.Cv-1)), max(w.density, density), max(w.h, h), max(w.share, cp/dcp, density/dd)}

@@ -19,8 +19,8 @@ import (
 // follows from them, and cv keeps its exact ratio to cp, so At takes no less time
 // than f's.
 //
-// It pays from some 25 000 (water, 200 K) or 100 000 (steam, 300 K) balances on,
-// which is what building takes: 0.4 ms or 3 ms. It holds 152 B (water) or 184 B
+// It pays from some 10 000 (water, 200 K) or 70 000 (steam, 300 K) balances on:
+// that is what building takes, 0.2 ms and 2.5 ms. It holds 152 B (water) or 184 B
 // (steam) a cell, for water mostly one cell a kelvin, for steam between 1 and 25
 // bar some five, and 370 KB at most: columns beyond that stay exact. The same box
 // gives the same bits. A box that is empty or has no column in region 1 or 2

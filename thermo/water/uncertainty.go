@@ -48,7 +48,7 @@ func deviation(T, p float64, phase thermo.Phase) (cp, density float64) {
 	if !ok {
 		return 0.4, 0.1
 	}
-	return min(0.0015+1.3e-6*s.Cp, 0.4), min(1.5e-7*s.Cp, 0.1)
+	return min(0.0035+1.7e-6*max(s.Cp-7000, 0), 0.4), min(1.5e-7*s.Cp, 0.1)
 }
 
 // rising is the figure low up to 3 MPa, and high from 12 MPa on.

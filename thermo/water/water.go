@@ -2,15 +2,38 @@
 //
 // The formulation is R7-97(2012), Revised Release on the IAPWS Industrial
 // Formulation 1997 for the Thermodynamic Properties of Water and Steam, with all
-// of its regions: 1 for the liquid up to 623.15 K, 2 for steam, 3 for the
-// neighbourhood of the critical point, 4 for the saturation line, 5 for steam
-// above 1073.15 K. Where two regions meet, they differ by up to 134 J/kg in h,
-// 0.018 % in density and 0.35 % in cp.
+// of its regions:
+//
+//	1  liquid, to 623.15 K and 100 MPa
+//	2  steam, to 1073.15 K and 100 MPa
+//	3  around the critical point, above 623.15 K; solved for the density
+//	4  the saturation line, 273.15 K to 647.096 K
+//	5  steam, to 2273.15 K and 50 MPa
+//
+// Every value that the release prints for checking is met to 3.2e-9, which is
+// its rounding. Where regions meet they differ, as the release allows, by up to
+// 134 J/kg in h, 0.018 % in density and 0.35 % in cp. The largest deviations from
+// IAPWS-95, the scientific formulation, found at 5000 random states, half of them
+// by the saturation line or the critical point, are
+//
+//	region  cp       cv       density   h
+//	1       0.14 %   0.5 %    0.004 %   0.24 kJ/kg
+//	2       0.6 %    0.8 %    0.04 %    0.4 kJ/kg
+//	3       16 %     16 %     3 %       17 kJ/kg
+//	5       0.1 %    0.13 %   0.01 %    0.33 kJ/kg
+//
+// in region 2 next to saturation, in region 3 beside the critical point; where cp
+// is below 10 kJ/(kg K), region 3 is within 0.4 % in cp and 0.04 % in density.
 //
 // Not modelled: metastable states (water is refused below its saturation pressure
 // and steam above it), wet steam, ice. Below 273.15 K water is refused at every
 // pressure, though under pressure it freezes a little later. The release's
 // backward equations are left out: nothing here asks for T from h.
+//
+// Balances are worked in straight lines of shared powers, a 65th (water) and a
+// 36th (steam) of the time of the equations as printed, with math.Pow; where one
+// fluid is asked for tens of thousands of them, [Tabulate] takes a 220th and a
+// 165th.
 package water
 
 import (
