@@ -118,7 +118,7 @@ func TestFaultsAreCaught(t *testing.T) {
 // unsure knows nothing of its cp at high pressure.
 type unsure struct{ sound }
 
-func (unsure) Uncertainty(T, p float64) (cp, density float64) { return p / 1e6, 0.01 }
+func (unsure) Uncertainty(T, p float64) (cp, density float64) { return p / 5e5, 0.01 }
 
 // brief has a balance of its own, off by a part of it.
 type brief struct {

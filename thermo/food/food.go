@@ -8,7 +8,8 @@
 //
 // The range is 0 °C to 150 °C as a liquid: a watery food freezes a little below 0 °C and
 // boils a little above the boiling point of water at its pressure, so that both ends are on
-// the safe side.
+// the safe side. A fat or oil without any water has no such ends, and where it sets is not
+// known.
 //
 // Found: the water polynomial itself has 2.1 % less cp than IAPWS-IF97 at 0 °C, 1.3 % less
 // at 20 °C, 0.95 % at 60 °C to 95 °C and 1.7 % at 150 °C. The published equations are kept;
@@ -20,9 +21,13 @@
 //
 //	h(T, p) = ∫ cp dT + (p − 101325 Pa) · (v − T dv/dT)
 //
-// Not modelled: freezing and ice, the melting of fat (milk fat takes up some 80 kJ/kg
-// between 0 °C and 40 °C, from memory; in cream that is no small matter), dissolved or
-// entrained gas, and all that cooking changes.
+// Fat melts: that of milk takes up some 80 kJ/kg between 0 °C and 40 °C (from memory),
+// which is as much again as its cp. It is not in cp, since how much of it has set depends
+// on the fat and on how it was cooled; but all of it is in the uncertainty of cp below 40
+// °C, 2 % of whole milk's and 26 % of cream's. An oil that stays liquid knows better than
+// that.
+//
+// Not modelled: freezing and ice, dissolved or entrained gas, and all that cooking changes.
 package food
 
 import (
@@ -73,9 +78,9 @@ type mixture struct {
 	name, source string
 	cp           quadratic // of the whole, J/(kg K)
 	parts        []part    // those that there are
-	water        float64   // mass fraction
+	water, fat   float64   // mass fractions
 	pressureTerm float64   // m³/kg
-	boilsBelow   float64   // Pa; from there on water boils beyond the range
+	boilsBelow   float64   // Pa; from there on water boils beyond the range; 0 without water
 }
 
 func (m *mixture) Name() string        { return m.name }
@@ -89,8 +94,11 @@ func (m *mixture) Bounds() thermo.Bounds {
 // MolarMass is 0: a food has none to speak of.
 func (m *mixture) MolarMass() float64 { return 0 }
 
-// Span returns 0 °C, and the boiling point of water at p.
+// Span returns 0 °C, and the boiling point of water at p; a food without water has neither.
 func (m *mixture) Span(p float64) (lo, hi float64) {
+	if m.water == 0 {
+		return 0, math.Inf(1)
+	}
 	if !(p >= minPressure) {
 		return minT, minT
 	}
@@ -102,7 +110,7 @@ func (m *mixture) Span(p float64) (lo, hi float64) {
 }
 
 func (m *mixture) At(T, p float64) (thermo.Properties, error) {
-	if err := m.Bounds().Check(m.name, T, p, why(T)); err != nil {
+	if err := m.Bounds().Check(m.name, T, p, m.why(T)); err != nil {
 		return thermo.Properties{}, err
 	}
 	if p < m.boilsBelow {
@@ -116,8 +124,11 @@ func (m *mixture) At(T, p float64) (thermo.Properties, error) {
 	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cp, Density: rho}, nil
 }
 
-func why(T float64) string {
-	if T < minT {
+func (m *mixture) why(T float64) string {
+	switch {
+	case T < minT && m.water == 0:
+		return "fat sets; where it does is not known"
+	case T < minT:
 		return "freezing point of water; the food freezes a little lower"
 	}
 	return "range of Choi and Okos"
@@ -145,34 +156,4 @@ func (m *mixture) expansion(t float64) (slope float64) {
 		slope -= m.parts[k].fraction * m.parts[k].density.slope(t) / (rho * rho)
 	}
 	return slope
-}
-
-// deviations are how far the water polynomials are from IAPWS-IF97, as fractions: measured
-// at 1 atm, beyond 100 °C at saturation.
-var deviations = [...]struct{ t, cp, density float64 }{
-	{0, 0.0215, 0.0029}, {5, 0.0182, 0.0029}, {10, 0.0160, 0.0029}, {20, 0.0133, 0.0026}, {40, 0.0108, 0.0011}, {60, 0.0096, 0.0009},
-	{80, 0.0094, 0.0018}, {95, 0.0099, 0.0018}, {120, 0.0118, 0.0012}, {135, 0.0139, 0.0018}, {150, 0.0167, 0.0043},
-}
-
-// Half-widths of what the dry components leave open, as fractions: cp by the errors that
-// Choi and Okos gave for their fits, up to 6 % (from memory); density by that of milk, 0.6
-// % to 0.7 % above ours at a tenth of solids (from memory).
-const dryCp, dryDensity = 0.06, 0.08
-
-// Uncertainty puts two half-widths together, for water its deviation from IAPWS-IF97 at T,
-// for the rest 6 % of cp and 8 % of density, each by its share of the food's cp or volume,
-// and takes the sum for rectangular: u = half-width/√3.
-func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
-	t := min(max(T-zeroC, 0), maxT-zeroC)
-	k := 1
-	for k < len(deviations)-1 && deviations[k].t < t {
-		k++
-	}
-	a, b := &deviations[k-1], &deviations[k]
-	u := (t - a.t) / (b.t - a.t)
-	shareCp := m.water * waterPart.cp.at(t) / m.cp.at(t)
-	shareVolume := m.water / waterPart.density.at(t) / m.volume(t)
-	cp = shareCp*(a.cp+u*(b.cp-a.cp)) + (1-shareCp)*dryCp
-	density = shareVolume*(a.density+u*(b.density-a.density)) + (1-shareVolume)*dryDensity
-	return cp / math.Sqrt(3), density / math.Sqrt(3)
 }

@@ -18,9 +18,9 @@ type Composition struct {
 const (
 	// sumTolerance is how far an analysis may miss the whole; it is scaled to it.
 	sumTolerance = 0.005
-	// leastLiquid is the least mass fraction of water and fat together: with less it is a
-	// powder or a paste, by our own judgement.
-	leastLiquid = 0.2
+	// A food with less water than leastWater and less fat than leastFat, as mass fractions,
+	// is a powder or a paste, by our own judgement.
+	leastWater, leastFat = 0.2, 0.5
 )
 
 const citation = "Choi and Okos 1986, as in ASHRAE Handbook Refrigeration"
@@ -70,8 +70,8 @@ func (c Composition) check() error {
 	if math.Abs(sum-1) > sumTolerance+1e-12 {
 		return fmt.Errorf("food %v: the mass fractions make %.5g together; they must make 1 within %g", c, sum, sumTolerance)
 	}
-	if c.Water+c.Fat < leastLiquid {
-		return fmt.Errorf("food %v: water and fat make %.4g of it; with less than %g it is no liquid", c, c.Water+c.Fat, leastLiquid)
+	if c.Water < leastWater && c.Fat < leastFat {
+		return fmt.Errorf("food %v: it has %.4g of water and %.4g of fat; with less than %g of the one and %g of the other it is no liquid", c, c.Water, c.Fat, leastWater, leastFat)
 	}
 	return nil
 }
@@ -84,7 +84,7 @@ func mix(name, source string, c Composition) *mixture {
 	for _, s := range shares {
 		sum += s.fraction
 	}
-	m.water = c.Water / sum
+	m.water, m.fat = c.Water/sum, c.Fat/sum
 	for _, s := range shares {
 		if s.fraction == 0 {
 			continue
@@ -97,8 +97,7 @@ func mix(name, source string, c Composition) *mixture {
 	}
 	const t = referenceT - zeroC
 	m.pressureTerm = m.volume(t) - referenceT*m.expansion(t)
-	m.boilsBelow = maxPressure
-	if p, err := water.SaturationPressure(maxT); err == nil {
+	if p, err := water.SaturationPressure(maxT); err == nil && m.water > 0 {
 		m.boilsBelow = p
 	}
 	return m
