@@ -28,6 +28,7 @@ var (
 	coverage    = desc("load_coverage_ratio", "Part of the window that was measured, 0 to 1.", "load", "window")
 	heat        = desc("load_heat_joules_total", "Heat that the stream gave up (given) or took up (taken), as last committed to disk; survives restarts.", "load", "direction")
 	spent       = desc("load_time_seconds_total", "Time accounted for, by kind, as last committed to disk; survives restarts.", "load", "kind")
+	latent      = desc("load_latent", "1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.", "load")
 	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
 	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
 	outlet      = desc("load_outlet_celsius", "Outlet temperature that the duty was computed from.", "load")
@@ -69,7 +70,7 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
-	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, massFlow, inlet, outlet, expected, verdict,
+	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, latent, massFlow, inlet, outlet, expected, verdict,
 		reading, readings, refused, refusals, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, fileBytes, failures, lost, lostMins} {
 		ch <- d
 	}
@@ -114,6 +115,7 @@ func (o sink) figure(name string, f *loads.Figure) {
 	}
 	o.gauge(duty, f.Duty, name)
 	o.gauge(uncertainty, f.Uncertainty, name)
+	o.gauge(latent, truth(f.Latent), name)
 	o.gauge(massFlow, f.MassFlow, name)
 	if f.Idle {
 		return

@@ -151,6 +151,24 @@ heatreeve_load_duty_watts{load="spare"} 0
 	}
 }
 
+// A duty that is the sensible part only says so, as long as it is shown.
+func TestLatent(t *testing.T) {
+	s := snapshot()
+	s.Loads[2].Figure = loads.Figure{At: instant, Duty: 40e3, Remark: loads.Remark{Latent: true, Note: "sensible part only"}}
+	want := `
+# HELP heatreeve_load_latent 1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.
+# TYPE heatreeve_load_latent gauge
+heatreeve_load_latent{load="hot-water"} 0
+heatreeve_load_latent{load="spare"} 1
+`
+	if err := testutil.GatherAndCompare(registry(s, instant+5e9), strings.NewReader(want), "heatreeve_load_latent"); err != nil {
+		t.Error(err)
+	}
+	if n, err := testutil.GatherAndCount(registry(s, instant+60e9), "heatreeve_load_latent"); n != 0 || err != nil {
+		t.Errorf("%d series (%v) after the inputs ran out, want none", n, err)
+	}
+}
+
 // The naming rules hold but for the one exception made on purpose.
 func TestNamesKeepTheRules(t *testing.T) {
 	r := registry(snapshot(), instant)
