@@ -16,8 +16,8 @@ import (
 )
 
 // reference95 asks Debian's python3-iapws for IAPWS-95 (IAPWS R6-95(2018), the
-// scientific formulation that IF97 was fitted to): density, h, cp, cv. A state
-// that its solver does not find gives "-".
+// scientific formulation that IF97 was fitted to): density, h, cp, cv. Its solver
+// sometimes returns a density that does not give the pressure back; that is "-".
 const reference95 = `
 import sys, warnings
 warnings.simplefilter("ignore")
@@ -26,6 +26,8 @@ for line in sys.stdin:
     T, p = map(float, line.split())
     try:
         s = IAPWS95(T=T, P=p / 1e6)
+        if abs(IAPWS95(T=T, rho=s.rho).P * 1e6 / p - 1) > 1e-6:
+            raise ValueError(s.rho)
         print(repr(s.rho), repr(s.h * 1e3), repr(s.cp * 1e3), repr(s.cv * 1e3))
     except Exception:
         print("-")
@@ -45,7 +47,7 @@ func TestLiveAgainstIAPWS95(t *testing.T) {
 	tolerance := map[int]float64{1: 260, 2: 450, 3: 600, 5: 400} // of h in J/kg
 	type worst struct{ cp, cv, density, h, share float64 }
 	found, seen := map[int]worst{}, map[int]int{}
-	states := randomStates(rand.New(rand.NewPCG(95, 97)), 200)
+	states := randomStates(rand.New(rand.NewPCG(95, 97)), 100)
 	if n := compare(t, states); n < len(states)*99/100 {
 		t.Errorf("%d of %d states compared", n, len(states))
 	}
@@ -71,8 +73,8 @@ func TestLiveAgainstIAPWS95(t *testing.T) {
 	for _, r := range []int{1, 2, 3, 5} {
 		w := found[r]
 		t.Logf("region %d, %d states: largest deviations: cp %.2e, cv %.2e, density %.1e, h %.0f J/kg; %.2f of what is allowed", r, seen[r], w.cp, w.cv, w.density, w.h, w.share)
-		if seen[r] < 200 {
-			t.Errorf("region %d: %d states, want 200", r, seen[r])
+		if seen[r] < 100 {
+			t.Errorf("region %d: %d states, want 100", r, seen[r])
 		}
 	}
 }
