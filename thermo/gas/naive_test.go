@@ -66,11 +66,19 @@ func (n naive) residual(T, p float64) residual {
 	return residual{z, z - 1 + (T*da-a)*log/rt, cv, cv - 1 - T*dpdT*dpdT/dpdv/thermo.R}
 }
 
-// attraction is √a of a component and its derivatives by T.
+// attraction is √a of a component and its derivatives by T: the printed line, and the bell that takes its
+// place below 0.3 of the value at the critical temperature.
 func attraction(c criticalPoint, T float64) (s, ds, dds float64) {
 	k := 0.37464 + 1.54226*c.omega - 0.26992*math.Pow(c.omega, 2)
 	s0 := math.Sqrt(0.45724 * math.Pow(thermo.R*c.T, 2) / c.p)
-	return s0 * (1 + k*(1-math.Pow(T/c.T, 0.5))), -s0 * k / 2 * math.Pow(T*c.T, -0.5), s0 * k / 4 * math.Pow(c.T, -0.5) * math.Pow(T, -1.5)
+	end := c.T * math.Pow(1+0.7/k, 2)
+	if T <= end {
+		return s0 * (1 + k*(1-math.Pow(T/c.T, 0.5))), -s0 * k / 2 * math.Pow(T*c.T, -0.5), s0 * k / 4 * math.Pow(c.T, -0.5) * math.Pow(T, -1.5)
+	}
+	w := 1 + k/0.3*(math.Pow(T/c.T, 0.5)-math.Pow(end/c.T, 0.5))
+	dw, ddw := k/0.6*math.Pow(T*c.T, -0.5), -k/1.2*math.Pow(c.T, -0.5)*math.Pow(T, -1.5)
+	y := 0.3 * s0 * math.Exp((1-math.Pow(w, 2))/2)
+	return y, -w * y * dw, (math.Pow(w, 2)-1)*y*math.Pow(dw, 2) - w*y*ddw
 }
 
 // root by Cardano, the largest of three or the only one.

@@ -112,7 +112,7 @@ func (m *cubic) check(T, p float64) error {
 
 // Uncertainty holds all deviations from the reference equations of 12 gases, of air
 // and, for water, from IAPWS-IF97 within twice its size. It takes a fraction of the residual of cp and
-// of the covolume's part in the density: 0.2 of the residual and 3 % (polar gases 35 %
+// of the covolume's part in the density: 0.2 of the residual and 4 % (polar gases 35 %
 // more) of B = bp/(RT) in cp, 0.55 B in density, both growing below 1.3 times the critical
 // temperature. Polar gases add what their own pairs make of the ideal gas and the equation misses,
 // see [cubic.missed]. For mixtures comes what kij = 0 may be off by (an estimate, no source): up
@@ -128,7 +128,7 @@ func (m *cubic) Uncertainty(T, p float64) (cp, density float64) {
 		volume *= math.Pow(cool, 2.6)
 	}
 	cp, density = m.missed(T, p)
-	cp += (share+m.pairs)*math.Abs(res.cp)/(ideal+res.cp) + (0.03+0.35*m.polar)*B
+	cp += (share+m.pairs)*math.Abs(res.cp)/(ideal+res.cp) + (0.04+0.35*m.polar)*B
 	density += volume*B + m.pairs*math.Abs(1-1/res.z)
 	return math.Hypot(cp/math.Sqrt(3), m.fit.at(T)), math.Hypot(density/math.Sqrt(3), massU)
 }
