@@ -79,8 +79,9 @@ func (s *solute) naive(T, p, x float64) thermo.Properties {
 	slope := func(i, j, t, d float64) float64 { return i * math.Pow(t, max(i-1, 0)) * math.Pow(d, j) }
 	integral := func(i, j, t, d float64) float64 { return math.Pow(t, i+1) / (i + 1) * math.Pow(d, j) }
 	t := T - s.baseT
-	cp, rho, base := sum(&s.cp, value, t), sum(&s.density, value, t), sum(&s.density, value, 0)
-	h := sum(&s.cp, integral, t) + (p-101325)*(1/base+s.baseT*sum(&s.density, slope, 0)/(base*base))
+	middle := (273.15 + s.maxT) / 2
+	cp, rho, base := sum(&s.cp, value, t), sum(&s.density, value, t), sum(&s.density, value, middle-s.baseT)
+	h := sum(&s.cp, integral, t) + (p-101325)*(1/base+middle*sum(&s.density, slope, middle-s.baseT)/(base*base))
 	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cp, Density: rho}
 }
 

@@ -88,8 +88,9 @@ func (s *solute) mix(name string, x, u float64) *mixture {
 	}
 	m.bounds = thermo.Bounds{MinT: s.freezesAt(max(0, x-2*u)), MaxT: s.maxT, MinP: m.boiling.minPressure(), MaxP: maxPressure}
 	m.boilsBelow = boilsBelow(m.boiling, s.maxT)
-	rho, slope := m.density[0], m.density[1]
-	m.pressureTerm = (1 + s.baseT*slope/rho) / rho // v − T dv/dT, with dv = −dρ/ρ²
+	m.stiff = thermo.NewIncompressible((zeroC+s.maxT)/2, s.freezesAt(x), s.maxT, func(T float64) (rho, slope float64) {
+		return m.density.at(T - s.baseT), m.density.slope(T - s.baseT)
+	})
 	return m
 }
 

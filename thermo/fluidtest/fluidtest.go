@@ -3,7 +3,6 @@ package fluidtest
 
 import (
 	"errors"
-	"fmt"
 	"math"
 	"testing"
 
@@ -16,6 +15,8 @@ import (
 //   - every figure is finite, density is above zero, cp ≥ cv > 0;
 //   - h = u + p/ρ, and ∂h/∂T at constant pressure is cp (central difference);
 //   - h rises with T;
+//   - ∂h/∂p at constant temperature is v − T ∂v/∂T, or what its [thermo.PressureLaw] makes
+//     of it;
 //   - just beyond each bound of the box, and just outside of the phase, the
 //     error is a *[thermo.RangeError] that names the fluid and the bound;
 //   - NaN, infinite and negative input is refused;
@@ -43,6 +44,7 @@ var checks = []struct {
 	{"description", suite.description},
 	{"state", suite.everyState},
 	{"rising", suite.rising},
+	{"pressure", suite.pressure},
 	{"uncertainty", suite.uncertainty},
 	{"balance", suite.balance},
 	{"sensible", suite.sensible},
@@ -142,159 +144,6 @@ func (s suite) balance(t report) {
 		scale := math.Abs(p.Enthalpy) + st.p/p.Density
 		if math.Abs(got.Enthalpy-p.Enthalpy) > 1e-12*scale || math.Abs(got.Cp/p.Cp-1) > 1e-12 || math.Abs(got.Density/p.Density-1) > 1e-12 {
 			t.Errorf("%g K, %g Pa: balance %+v, properties %+v", st.T, st.p, got, p)
-		}
-	}
-}
-
-func (s suite) everyState(t report) {
-	for _, st := range s.states {
-		p, err := s.f.At(st.T, st.p)
-		if err != nil {
-			t.Errorf("%g K, %g Pa: %v", st.T, st.p, err)
-			continue
-		}
-		s.sane(t, st, p)
-		s.slope(t, st, p)
-	}
-}
-
-func (s suite) sane(t report, st state, p thermo.Properties) {
-	for _, v := range []float64{p.Enthalpy, p.InternalEnergy, p.Cp, p.Cv, p.Density} {
-		if math.IsNaN(v) || math.IsInf(v, 0) {
-			t.Errorf("%g K, %g Pa: not finite: %+v", st.T, st.p, p)
-			return
-		}
-	}
-	if !(p.Density > 0 && p.Cv > 0 && p.Cp >= p.Cv) {
-		t.Errorf("%g K, %g Pa: want density > 0 and cp ≥ cv > 0, got %+v", st.T, st.p, p)
-	}
-	pv := st.p / p.Density
-	scale := math.Abs(p.Enthalpy) + math.Abs(p.InternalEnergy) + pv
-	if d := p.Enthalpy - p.InternalEnergy - pv; math.Abs(d) > 1e-12*scale {
-		t.Errorf("%g K, %g Pa: h − u − p/ρ = %g J/kg of %g", st.T, st.p, d, scale)
-	}
-}
-
-// slope compares ∂h/∂T with cp. Central differences over 2·10 mK and 2·5 mK,
-// extrapolated (Richardson), leave the fifth derivative of h only, which counts
-// nowhere, and 1e-7 of cp in rounding; steps of that size still fit beside each
-// end of the window.
-func (s suite) slope(t report, st state, p thermo.Properties) {
-	lo, hi := window(s.f, st.p)
-	d := min(0.01, (hi-lo)*9e-5)
-	whole, err1 := s.difference(st, d)
-	half, err2 := s.difference(st, d/2)
-	if err := errors.Join(err1, err2); err != nil {
-		t.Errorf("%g K ± %g K, %g Pa: %v", st.T, d, st.p, err)
-		return
-	}
-	got := (4*half - whole) / 3
-	if math.Abs(got/p.Cp-1) > 1e-6 {
-		t.Errorf("%g K, %g Pa: ∂h/∂T = %.9g, cp = %.9g J/(kg K)", st.T, st.p, got, p.Cp)
-	}
-}
-
-// difference is the central difference quotient of h over 2d.
-func (s suite) difference(st state, d float64) (float64, error) {
-	below, err1 := s.f.At(st.T-d, st.p)
-	above, err2 := s.f.At(st.T+d, st.p)
-	return (above.Enthalpy - below.Enthalpy) / ((st.T + d) - (st.T - d)), errors.Join(err1, err2)
-}
-
-func (s suite) rising(t report) {
-	last, at := math.Inf(-1), state{}
-	for _, st := range s.states {
-		p, err := s.f.At(st.T, st.p)
-		if err != nil {
-			t.Errorf("%g K, %g Pa: %v", st.T, st.p, err)
-			continue
-		}
-		if st.p == at.p && !(p.Enthalpy > last) {
-			t.Errorf("%g Pa: h(%g K) = %g is not above h(%g K) = %g J/kg", st.p, st.T, p.Enthalpy, at.T, last)
-		}
-		last, at = p.Enthalpy, st
-	}
-}
-
-// hair is the relative distance at which a state counts as just beyond a bound.
-const hair = 1e-9
-
-func (s suite) box(t report) {
-	b := s.f.Bounds()
-	mid := s.states[len(s.states)/2]
-	for _, c := range []struct {
-		st       state
-		quantity string
-		bound    float64
-		below    bool
-	}{
-		{state{b.MinT * (1 - hair), mid.p}, "temperature", b.MinT, true},
-		{state{b.MaxT * (1 + hair), mid.p}, "temperature", b.MaxT, false},
-		{state{mid.T, beneath(b.MinP)}, "pressure", b.MinP, true},
-		{state{mid.T, b.MaxP * (1 + hair)}, "pressure", b.MaxP, false},
-	} {
-		e := s.refusal(t, c.st)
-		if e == nil {
-			continue
-		}
-		if e.Quantity != c.quantity || e.Bound != c.bound || e.Below != c.below {
-			t.Errorf("%g K, %g Pa: got %+v; want %s, bound %g, below %v", c.st.T, c.st.p, *e, c.quantity, c.bound, c.below)
-		}
-	}
-}
-
-func beneath(p float64) float64 {
-	if p == 0 {
-		return 0 // a range open at 0: the bound itself is outside
-	}
-	return p * (1 - hair)
-}
-
-// phase checks the ends of Span that lie within the box.
-func (s suite) phase(t report) {
-	b := s.f.Bounds()
-	for _, p := range pressures(b) {
-		lo, hi := s.f.Span(p)
-		if lo > b.MinT && lo < b.MaxT {
-			s.refusal(t, state{lo * (1 - hair), p})
-		}
-		if hi > b.MinT && hi < b.MaxT {
-			s.refusal(t, state{hi * (1 + hair), p})
-		}
-	}
-}
-
-// refusal returns the RangeError for a state that must be refused, after
-// checking that it is well formed, or nil when it is not.
-func (s suite) refusal(t report, st state) *thermo.RangeError {
-	t.Helper()
-	where := fmt.Sprintf("%.12g K, %.12g Pa", st.T, st.p)
-	p, err := s.f.At(st.T, st.p)
-	var e *thermo.RangeError
-	if !errors.As(err, &e) {
-		t.Errorf("%s: got %+v, error %v; want a *thermo.RangeError", where, p, err)
-		return nil
-	}
-	value := map[string]float64{"temperature": st.T, "pressure": st.p}
-	v, known := value[e.Quantity]
-	if !known || e.Fluid != s.f.Name() || e.Why == "" || e.Value != v {
-		t.Errorf("%s: ill-formed %+v", where, *e)
-	}
-	if beyond := e.Value > e.Bound; e.Value != e.Bound && beyond == e.Below {
-		t.Errorf("%s: the error puts %g on the wrong side of %g", where, e.Value, e.Bound)
-	}
-	return e
-}
-
-func (s suite) nonsense(t report) {
-	good := s.states[len(s.states)/2]
-	for _, bad := range []float64{math.NaN(), math.Inf(1), math.Inf(-1), -1, 0} {
-		for _, st := range []state{{bad, good.p}, {good.T, bad}, {bad, bad}} {
-			p, err := s.f.At(st.T, st.p)
-			var e *thermo.RangeError
-			if !errors.As(err, &e) || p != (thermo.Properties{}) {
-				t.Errorf("%g K, %g Pa: got %+v, error %v; want nothing and a *thermo.RangeError", st.T, st.p, p, err)
-			}
 		}
 	}
 }

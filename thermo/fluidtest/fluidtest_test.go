@@ -43,7 +43,7 @@ func (f sound) right(T, p float64) (thermo.Properties, error) {
 	if T > 360 {
 		return thermo.Properties{}, &thermo.RangeError{Fluid: "sound", Quantity: "temperature", Value: T, Bound: 360, Why: "boiling point"}
 	}
-	h := 4000 * (T - 300)
+	h := 4000*(T-300) + p/1000
 	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/1000, Cp: 4000, Cv: 4000, Density: 1000}, nil
 }
 

@@ -38,12 +38,11 @@ import (
 )
 
 const (
-	zeroC             = 273.15 // K
-	minT, maxT        = 273.15, 423.15
-	minPressure       = 611.2127 // Pa: below it water boils at its freezing point
-	maxPressure       = 2.5e6    // Pa
-	referencePressure = 101325.0 // Pa, where the pressure term is zero
-	referenceT        = 333.15   // K, where the pressure term is taken
+	zeroC       = 273.15 // K
+	minT, maxT  = 273.15, 423.15
+	minPressure = 611.2127 // Pa: below it water boils at its freezing point
+	maxPressure = 2.5e6    // Pa
+	referenceT  = 333.15   // K, where the pressure term is taken
 )
 
 // quadratic is a polynomial in °C, lowest power first.
@@ -79,8 +78,8 @@ type mixture struct {
 	cp           quadratic // of the whole, J/(kg K)
 	parts        []part    // those that there are
 	water, fat   float64   // mass fractions
-	pressureTerm float64   // m³/kg
-	boilsBelow   float64   // Pa; from there on water boils beyond the range; 0 without water
+	stiff        thermo.Incompressible
+	boilsBelow   float64 // Pa; from there on water boils beyond the range; 0 without water
 }
 
 func (m *mixture) Name() string        { return m.name }
@@ -120,8 +119,7 @@ func (m *mixture) At(T, p float64) (thermo.Properties, error) {
 	}
 	t := T - zeroC
 	cp, rho := m.cp.at(t), 1/m.volume(t)
-	h := m.cp.integral(t) + (p-referencePressure)*m.pressureTerm
-	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cp, Density: rho}, nil
+	return m.stiff.Properties(p, m.cp.integral(t), cp, rho), nil
 }
 
 func (m *mixture) why(T float64) string {
@@ -149,11 +147,16 @@ func (m *mixture) volume(t float64) (v float64) {
 	return v
 }
 
-// expansion is dv/dT in m³/(kg K) at t in °C.
-func (m *mixture) expansion(t float64) (slope float64) {
+// density is ρ in kg/m³ at T in K, and dρ/dT.
+func (m *mixture) density(T float64) (rho, slope float64) {
+	var v, expansion float64
 	for k := range m.parts {
-		rho := m.parts[k].density.at(t)
-		slope -= m.parts[k].fraction * m.parts[k].density.slope(t) / (rho * rho)
+		part := m.parts[k].density.at(T - zeroC)
+		v += m.parts[k].fraction / part
+		expansion -= m.parts[k].fraction * m.parts[k].density.slope(T-zeroC) / (part * part)
 	}
-	return slope
+	return 1 / v, -expansion / (v * v)
 }
+
+// PressureLaw is that of an incompressible fluid.
+func (m *mixture) PressureLaw() thermo.PressureLaw { return m.stiff.PressureLaw() }

@@ -95,8 +95,7 @@ func mix(name, source string, c Composition) *mixture {
 		}
 		m.parts = append(m.parts, part{x, s.of.density})
 	}
-	const t = referenceT - zeroC
-	m.pressureTerm = m.volume(t) - referenceT*m.expansion(t)
+	m.stiff = thermo.NewIncompressible(referenceT, minT, maxT, m.density)
 	if p, err := water.SaturationPressure(maxT); err == nil && m.water > 0 {
 		m.boilsBelow = p
 	}

@@ -24,14 +24,15 @@ const meltingHeat, meltedAt = 80e3, 40.0
 // Uncertainty puts half-widths together, for water its deviation from IAPWS-IF97 at T, for
 // the rest 6 % of cp and 8 % of density, of fat 4 %, each by its share of the food's cp or
 // volume. Below 40 °C the fat may be melting, whatever fat it is: 80 kJ/kg spread over
-// those 40 K is another part of the half-width of cp. The sum is taken for rectangular: u =
-// half-width/√3.
+// those 40 K is another part of the half-width of cp, and so is what an incompressible fluid
+// leaves out of cp at p (see [thermo.Incompressible]), 0.1 % of milk at 2 MPa. The sum is
+// taken for rectangular: u = half-width/√3.
 func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
 	t := min(max(T-zeroC, 0), maxT-zeroC)
 	ofWater := deviationAt(t)
 	total, volume := m.cp.at(t), m.volume(t)
 	water := m.water * waterPart.cp.at(t) / total
-	cp = water*ofWater.cp + (1-water)*dryCp
+	cp = water*ofWater.cp + (1-water)*dryCp + m.stiff.CpChange(p)/total
 	if t < meltedAt {
 		cp += m.fat * meltingHeat / meltedAt / total
 	}

@@ -29,7 +29,6 @@
 package oil
 
 const (
-	zeroC             = 273.15
-	referencePressure = 101325.0 // Pa, where the pressure term is zero
-	maxPressure       = 2.5e6    // Pa
+	zeroC       = 273.15
+	maxPressure = 2.5e6 // Pa
 )

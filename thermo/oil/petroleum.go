@@ -26,7 +26,7 @@ type petroleum struct {
 	alphas       []float64 // of the other groups that it may belong to
 	maxT         float64
 	ends         string // what maxT is
-	pressureTerm float64
+	stiff        thermo.Incompressible
 }
 
 // Petroleum returns the petroleum liquid of a density in kg/m³ at 15 °C, which must lie
@@ -57,7 +57,7 @@ func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error
 		return nil, fmt.Errorf("%s: %w", f.name, err)
 	}
 	f.source += ", density by ASTM D1250-80 for " + g.name
-	f.setPressureTerm()
+	f.stiff = thermo.NewIncompressible((minPetroleumT+f.maxT)/2, minPetroleumT, f.maxT, f.density)
 	return f, nil
 }
 
@@ -97,13 +97,15 @@ func (f *petroleum) setHeat(sg, watson float64) error {
 	return nil
 }
 
-// setPressureTerm works v − T dv/dT in the middle of the range: with ρ = ρ15 exp(−x (1 +
-// 0.8 x)), x = α (T − 15 °C), dv/dT is v α (1 + 1.6 x).
-func (f *petroleum) setPressureTerm() {
-	T := (minPetroleumT + f.maxT) / 2
-	x := f.alpha * (T - fifteenC)
-	f.pressureTerm = (1 - T*f.alpha*(1+1.6*x)) / (f.density15 * correction(f.alpha, T-fifteenC))
+// density is ρ in kg/m³ at T in K, and dρ/dT: with ρ = ρ15 exp(−x (1 + 0.8 x)), x = α (T −
+// 15 °C), that is −ρ α (1 + 1.6 x).
+func (f *petroleum) density(T float64) (rho, slope float64) {
+	rho = f.density15 * correction(f.alpha, T-fifteenC)
+	return rho, -rho * f.alpha * (1 + 1.6*f.alpha*(T-fifteenC))
 }
+
+// PressureLaw is that of an incompressible fluid.
+func (f *petroleum) PressureLaw() thermo.PressureLaw { return f.stiff.PressureLaw() }
 
 func (f *petroleum) Name() string        { return f.name }
 func (f *petroleum) Source() string      { return f.source }
@@ -123,9 +125,8 @@ func (f *petroleum) At(T, p float64) (thermo.Properties, error) {
 	if err := f.Bounds().Check(f.name, T, p, f.why(T)); err != nil {
 		return thermo.Properties{}, err
 	}
-	cp, rho := f.cp.at(T), f.density15*correction(f.alpha, T-fifteenC)
-	h := f.cp.integral(T) - f.cp.integral(fifteenC) + (p-referencePressure)*f.pressureTerm
-	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/rho, Cp: cp, Cv: cp, Density: rho}, nil
+	h := f.cp.integral(T) - f.cp.integral(fifteenC)
+	return f.stiff.Properties(p, h, f.cp.at(T), f.density15*correction(f.alpha, T-fifteenC)), nil
 }
 
 func (f *petroleum) why(T float64) string {
@@ -155,6 +156,6 @@ func (f *petroleum) Uncertainty(T, p float64) (cp, density float64) {
 	}
 	const hundredF, fiftyF = 310.93, 27.78 // K
 	precision := (0.0005 + 0.001*max(0, T-hundredF)/fiftyF) / 2
-	compressed := compressibility * math.Abs(p-referencePressure)
+	compressed := compressibility * math.Abs(p-thermo.Atmosphere)
 	return half / math.Sqrt(3), math.Sqrt(precision*precision + (other*other+compressed*compressed)/3)
 }

@@ -17,7 +17,7 @@ type transferLiquid struct {
 	gravity      float64 // specific gravity of a mineral oil, 0 of others
 }
 
-// Half-widths of what a data sheet says, as fractions. Makers call their values typical,
+// Half-widths of what a data sheet says, as fractions, for rectangles: u = half-width/√3. Makers call their values typical,
 // and state no tolerance: 3 % of cp for a synthetic of known composition, 5 % for a mineral
 // oil, 1 % of density (common practice, no source). The eutectic's density has 0.5 % beside
 // for its printing to 10 kg/m³.
@@ -74,34 +74,27 @@ func HeatTransfer(name string) (thermo.Fluid, error) {
 	for k, r := range l.rows {
 		points[k] = table.Point{T: r[0], Cp: r[1], Density: r[2], VapourPressure: r[3]}
 	}
-	f, err := table.New(l.name, l.source, points, table.Options{Freezing: l.freezing, MaxP: maxPressure})
-	if err != nil {
-		return nil, err
+	f, err := table.New(l.name, l.source, points, table.Options{
+		Freezing: l.freezing, MaxP: maxPressure, CpUncertainty: l.cp / math.Sqrt(3), DensityUncertainty: l.density / math.Sqrt(3),
+	})
+	if err != nil || l.gravity == 0 {
+		return f, err
 	}
-	out := &transfer{Fluid: f, cp: l.cp, density: l.density / math.Sqrt(3)}
-	if l.gravity > 0 {
-		out.other = cragoe(l.gravity)
-	}
-	return out, nil
+	return &mineral{f.(thermo.Compressed), cragoe(l.gravity)}, nil
 }
 
-// transfer is a table with an uncertainty of its own.
-type transfer struct {
-	thermo.Fluid
-	cp      float64   // half-width
-	density float64   // standard uncertainty
-	other   quadratic // cp of a mineral oil by Cragoe
+// mineral is the table of a mineral oil, held against Cragoe's correlation.
+type mineral struct {
+	thermo.Compressed
+	other quadratic
 }
 
-// Uncertainty of cp takes 3 % for a synthetic liquid, 5 % for a mineral oil or, where that
-// is more, its deviation from Cragoe's correlation at T; of density 1 %, 1.5 % for the
-// eutectic: half-widths of rectangles, u = half-width/√3.
-func (f *transfer) Uncertainty(T, p float64) (cp, density float64) {
-	half := f.cp
-	if f.other[0] != 0 {
-		if s, err := f.At(T, p); err == nil {
-			half = max(half, math.Abs(f.other.at(T)/s.Cp-1))
-		}
+// Uncertainty is that of the table, but of cp at least the deviation from Cragoe's
+// correlation at T over √3.
+func (f *mineral) Uncertainty(T, p float64) (cp, density float64) {
+	cp, density = f.Compressed.Uncertainty(T, p)
+	if s, err := f.At(T, p); err == nil {
+		cp = max(cp, math.Abs(f.other.at(T)/s.Cp-1)/math.Sqrt(3))
 	}
-	return half / math.Sqrt(3), f.density
+	return cp, density
 }

@@ -105,7 +105,7 @@ func TestMineralOilsAgainstCragoe(t *testing.T) {
 	for name, limit := range map[string]float64{"mineral oil A": 0.012, "mineral oil B": 0.135} {
 		f := must(t)(HeatTransfer(name))
 		b := f.Bounds()
-		c := f.(*transfer).other
+		c := f.(*mineral).other
 		var worst float64
 		for T := b.MinT; T <= b.MaxT; T += 5 {
 			s, err := f.At(T, 1e6)
@@ -114,7 +114,7 @@ func TestMineralOilsAgainstCragoe(t *testing.T) {
 			}
 			d := math.Abs(c.at(T)/s.Cp - 1)
 			worst = max(worst, d)
-			if u, _ := f.Uncertainty(T, 1e6); math.Abs(u*math.Sqrt(3)-max(d, mineralCp)) > 1e-12 {
+			if u, _ := f.Uncertainty(T, atm); math.Abs(u*math.Sqrt(3)-max(d, mineralCp)) > 1e-12 {
 				t.Errorf("%s at %g K: half-width %g, deviation %g", name, T, u*math.Sqrt(3), d)
 			}
 		}

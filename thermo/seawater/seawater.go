@@ -35,12 +35,12 @@ import (
 )
 
 const (
-	zero        = 273.15   // K
-	atmosphere  = 101325.0 // Pa
-	base        = 20.0     // °C, where the enthalpy is 0 at one atmosphere
-	maxT        = 393.15   // K
-	maxP        = 12e6     // Pa
-	maxSalinity = 0.12     // kg/kg
+	zero        = 273.15 // K
+	atmosphere  = thermo.Atmosphere
+	base        = 20.0   // °C, where the enthalpy is 0 at one atmosphere
+	maxT        = 393.15 // K
+	maxP        = 12e6   // Pa
+	maxSalinity = 0.12   // kg/kg
 	validity    = "range of the correlations"
 )
 
@@ -68,6 +68,10 @@ func (s *seawater) Bounds() thermo.Bounds { return s.bounds }
 
 // MolarMass is 0: salinity is by mass.
 func (s *seawater) MolarMass() float64 { return 0 }
+
+// PressureLaw is that of thermodynamics within 1.2 % of v: ∂cp/∂p and the density come from
+// different correlations.
+func (s *seawater) PressureLaw() thermo.PressureLaw { return thermo.PressureLaw{Within: 0.012} }
 
 // Span returns the freezing point at one atmosphere and the boiling point of water at p.
 // Seawater freezes below the 0 °C where the correlations begin, 0.075 K lower

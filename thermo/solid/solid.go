@@ -92,7 +92,7 @@ func New(name string) (thermo.Fluid, error) {
 
 // solid is a table or polynomial with an uncertainty of its own.
 type solid struct {
-	thermo.Fluid
+	thermo.Compressed
 	cpHalf, drift, at, densityU float64
 }
 
@@ -121,5 +121,5 @@ func (d *description) solid() (thermo.Fluid, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &solid{f, d.cpHalf, d.drift, d.at, d.densityHalf / math.Sqrt(3)}, nil
+	return &solid{f.(thermo.Compressed), d.cpHalf, d.drift, d.at, d.densityHalf / math.Sqrt(3)}, nil
 }

@@ -22,9 +22,7 @@ func New(name, source string, points []Point, opts Options) (thermo.Fluid, error
 		f := &tabulated{described: opts.describe(name, source, "range of the table")}
 		f.connect(points, opts.Enthalpies)
 		f.setBoiling(newVapour(points))
-		middle := (opts.MinT + opts.MaxT) / 2
-		rho, slope := f.densityAt(middle)
-		f.setPressureTerm(middle, rho, slope)
+		f.stiffen(f.densityAt, f.cpAt)
 		if opts.Phase != thermo.Gas {
 			return f, nil
 		}

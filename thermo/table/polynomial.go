@@ -56,8 +56,8 @@ func Polynomial(name, source string, cp, density []float64, opts Options) (therm
 	for k, c := range f.cp {
 		f.heat[k] = c / float64(k+1)
 	}
-	middle := (opts.MinT + opts.MaxT) / 2
-	f.setPressureTerm(middle, f.density.at(middle-zeroC), f.density.slope(middle-zeroC))
+	f.stiffen(func(T float64) (rho, slope float64) { return f.density.at(T - zeroC), f.density.slope(T - zeroC) },
+		func(T float64) float64 { return f.cp.at(T - zeroC) })
 	return f, nil
 }
 

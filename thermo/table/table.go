@@ -91,6 +91,12 @@ func (f *tabulated) connect(points []Point, enthalpies []float64) {
 	}
 }
 
+// cpAt returns cp in J/(kg K) at T in K.
+func (f *tabulated) cpAt(T float64) float64 {
+	k := stretch(f.starts, T)
+	return f.segments[k].cp.at(T - f.starts[k])
+}
+
 // densityAt returns the density in kg/m³ and its slope at T in K.
 func (f *tabulated) densityAt(T float64) (rho, slope float64) {
 	k := stretch(f.starts, T)
