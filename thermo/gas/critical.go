@@ -12,9 +12,9 @@ type criticalPoint struct{ T, p, omega float64 }
 // critical points by the reference equation of state of each gas: Span et al. (2000) for N2;
 // Schmidt and Wagner (1985) O2; Tegeler et al. (1999) Ar; Span and Wagner (1996) CO2;
 // Lemmon and Span (2006) CO, H2S, N2O; Wagner and Pruß (2002) H2O; Leachman et al. (2009) H2;
-// Ortiz Vega et al. (2019) He; Setzmann and Wagner (1991) CH4; Bücker and Wagner (2006) C2H6,
+// Ortiz-Vega et al. (2023) He; Setzmann and Wagner (1991) CH4; Bücker and Wagner (2006) C2H6,
 // C4H10; Lemmon et al. (2009) C3H8; Thol et al. (2019) C5H12; Smukala et al. (2000) C2H4;
-// Gao et al. (2020) NH3; Gao et al. (2016) SO2; Thol et al. (2018) HCl; Thol et al. (2021) Cl2;
+// Gao et al. (2023) NH3; Gao et al. (2016) SO2; Thol et al. (2018) HCl; Thol et al. (2021) Cl2;
 // Gmehling et al., PSRK revision 4, for NO and NO2.
 var critical = map[string]criticalPoint{
 	"N2":    {126.192, 3395800, 0.0372},

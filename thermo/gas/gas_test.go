@@ -121,33 +121,34 @@ func ideal(t *testing.T, species string, T float64) (cp, h float64) {
 // Where more than 1 % parts us from JANAF, we stay with the NASA coefficients. CH4: JANAF's
 // methane is of 1961 and falls behind Setzmann and Wagner (1991) too, by 0.5 % at 600 K. NO2 and N2O:
 // JANAF's tables of 1964 leave out or shorten the anharmonic terms which Gurvich, whom NASA
-// follows, carries (from memory). What is right at 1500 K is not settled by that: the
+// follows, carries (from memory). All three are worst at 1500 K. What is right at 1500 K is not settled by that: the
 // deviation stays in the uncertainty, see fits.
 func TestAgainstTables(t *testing.T) {
-	tolerance := map[string]struct{ cp, h float64 }{
-		"N2":      {0.005, 0.002},
-		"O2":      {0.035, 0.035},
-		"Ar":      {0, 0},
-		"CO2":     {0.022, 0.032},
-		"CO":      {0.016, 0.012},
-		"H2O":     {0.49, 0.12}, // worst at 1500 K
-		"H2":      {0.043, 0.03},
-		"He":      {0, 0},
-		"CH4":     {4.98, 2.7}, // worst at 1500 K, against the older table of JANAF
-		"C2H6":    {0.30, 0.23},
-		"C3H8":    {0.49, 0.40},
-		"C4H10":   {0.47, 0.24},
-		"C5H12":   {0.09, 0.03},
-		"C2H4":    {0.09, 0.05},
-		"NH3":     {0.92, 0.46}, // worst at 1500 K
-		"SO2":     {0.49, 0.33}, // worst at 1500 K
-		"H2S":     {0.72, 0.46}, // worst at 1500 K
-		"NO":      {0.111, 0.074},
-		"NO2":     {2.15, 1.5},  // worst at 1500 K
-		"N2O":     {1.31, 0.61}, // worst at 1500 K
-		"HCl":     {0.127, 0.036},
-		"Cl2":     {0.164, 0.005},
-		"dry-air": {0.013, 0.007},
+	type percent struct{ cp, h float64 }
+	tolerance := map[string]struct{ cool, hot percent }{ // up to 1000 K and up to 1500 K
+		"N2":      {percent{0.005, 0.002}, percent{0.005, 0.002}},
+		"O2":      {percent{0.035, 0.018}, percent{0.035, 0.034}},
+		"Ar":      {percent{0, 0}, percent{0, 0}},
+		"CO2":     {percent{0.022, 0.028}, percent{0.022, 0.028}},
+		"CO":      {percent{0.016, 0.011}, percent{0.016, 0.011}},
+		"H2O":     {percent{0.055, 0.011}, percent{0.49, 0.115}},
+		"H2":      {percent{0.043, 0.025}, percent{0.043, 0.025}},
+		"He":      {percent{0, 0}, percent{0, 0}},
+		"CH4":     {percent{2.62, 1.33}, percent{4.98, 2.61}},
+		"C2H6":    {percent{0.3, 0.23}, percent{0.3, 0.23}},
+		"C3H8":    {percent{0.49, 0.4}, percent{0.49, 0.4}},
+		"C4H10":   {percent{0.47, 0.24}, percent{0.47, 0.24}},
+		"C5H12":   {percent{0.09, 0.03}, percent{0.09, 0.03}},
+		"C2H4":    {percent{0.09, 0.05}, percent{0.09, 0.05}},
+		"NH3":     {percent{0.44, 0.21}, percent{0.92, 0.46}},
+		"SO2":     {percent{0.36, 0.24}, percent{0.49, 0.33}},
+		"H2S":     {percent{0.46, 0.35}, percent{0.72, 0.46}},
+		"NO":      {percent{0.111, 0.074}, percent{0.111, 0.074}},
+		"NO2":     {percent{1.57, 1.21}, percent{2.15, 1.5}},
+		"N2O":     {percent{0.67, 0.29}, percent{1.31, 0.61}},
+		"HCl":     {percent{0.034, 0.011}, percent{0.127, 0.036}},
+		"Cl2":     {percent{0.011, 0.002}, percent{0.164, 0.005}},
+		"dry-air": {percent{0.013, 0.003}, percent{0.013, 0.006}},
 	}
 	seen, worstCp, worstH := map[string]int{}, map[string]float64{}, map[string]float64{}
 	for _, r := range rows(t, "ideal-gas.csv") {
@@ -158,10 +159,14 @@ func TestAgainstTables(t *testing.T) {
 		dCp := max(0, math.Abs(cp-wantCp)-0.0005) / wantCp * 100
 		dH := max(0, math.Abs(h-wantH)-0.6) / max(1, math.Abs(wantH)) * 100
 		worstCp[s], worstH[s] = max(worstCp[s], dCp), max(worstH[s], dH)
-		if dCp > tolerance[s].cp {
+		limit := tolerance[s].hot
+		if T <= seam {
+			limit = tolerance[s].cool
+		}
+		if dCp > limit.cp {
 			t.Errorf("%s %g K: cp = %.4f, want %.4f J/(mol K) (%.3f %%; %s)", s, T, cp, wantCp, dCp, r["source"])
 		}
-		if dH > tolerance[s].h {
+		if dH > limit.h {
 			t.Errorf("%s %g K: h = %.1f, want %.1f J/mol (%.3f %%; %s)", s, T, h, wantH, dH, r["source"])
 		}
 		if d := 100 * (cp/wantCp - 1); math.Abs(d-r.number(t, "deviation_percent")) > 0.0025 {
@@ -227,6 +232,29 @@ func TestTrustOfWaterVapour(t *testing.T) {
 	}
 	if d := 1 - ideal.Density/real.Density; math.Abs(d-k.density*p) > 0.001 {
 		t.Errorf("density is %.4f low, table says %.4f", d, k.density*p)
+	}
+}
+
+// The thin gas against IAPWS-IF97, region 5 above 1073 K: within 0.02 % to 1000 K, and from there on ever farther below, 1.14 %
+// at 2000 K. A deviation is at most the half-width that the uncertainty is taken from.
+func TestHotWaterVapour(t *testing.T) {
+	worst := 0.0
+	for T := 400.0; T <= maxT; T += 25 {
+		const p = 1e4 // the difference in cp between this and no pressure is in the uncertainty
+		got, err1 := pure(t, "H2O", Ideal).At(T, p)
+		want, err2 := water.Steam().At(T, p)
+		if err := errors.Join(err1, err2); err != nil {
+			t.Fatal(err)
+		}
+		u, _ := pure(t, "H2O", Ideal).Uncertainty(T, p)
+		d := got.Cp/want.Cp - 1
+		if worst = max(worst, math.Abs(d)); math.Abs(d) > math.Sqrt(3)*u {
+			t.Errorf("%g K: cp is off by %.3f %%, uncertainty %.3f %%", T, 100*d, 100*u)
+		}
+	}
+	t.Logf("worst %.2f %%", 100*worst)
+	if worst < 0.005 {
+		t.Errorf("worst deviation %g, expected about 1 %%", worst)
 	}
 }
 

@@ -9,6 +9,7 @@ import (
 const (
 	minT = 200.0  // K, where the polynomials begin
 	maxT = 2000.0 // K
+	minP = 1.0    // Pa; below it the molecules of a gas meet the wall of a pipe before one another
 	seam = 1000.0 // K, where the two ranges of the polynomials meet
 	zero = 298.15 // K, where the enthalpy of every ideal gas here is 0
 )
@@ -80,7 +81,7 @@ type mixture struct {
 
 func newMixture(c composition) *mixture {
 	m := &mixture{polynomials: mix(c.parts), name: c.name, fit: fitOf(c.parts), parts: partsOf(c.parts)}
-	m.bounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: 0, MaxP: idealMaxP(c.parts)}
+	m.bounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: minP, MaxP: idealMaxP(c.parts)}
 	for _, p := range c.parts {
 		m.covolume += p.share * critical[p.formula].covolume()
 	}

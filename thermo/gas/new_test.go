@@ -306,3 +306,34 @@ func TestClear(t *testing.T) {
 		t.Errorf("%d states of gases that condense, want 500 or more", met)
 	}
 }
+
+// A gas begins at 1 Pa, by every model, and is refused below, down to the smallest number there is.
+func TestThinnestGas(t *testing.T) {
+	for name, fractions := range everyGas() {
+		for _, model := range []Model{Best, Ideal, PengRobinson, Reference} {
+			f, err := New(fractions, model)
+			if err != nil {
+				continue // no reference equation: TestReferenceRefuses
+			}
+			for _, T := range []float64{300, 450, 1990} {
+				if hot := f.Bounds().MaxT; T > hot {
+					continue
+				}
+				if at, err := f.At(T, minP); err != nil || !(at.Density > 0) {
+					t.Errorf("%s %v, %g K at 1 Pa: %+v, %v", name, model, T, at, err)
+				}
+				for _, p := range []float64{0.999, 1e-100, 1e-316, math.SmallestNonzeroFloat64} {
+					at, err := f.At(T, p)
+					e := new(thermo.RangeError)
+					if !errors.As(err, &e) || e.Quantity != "pressure" || e.Bound != minP || e.Fluid != f.Name() || at != (thermo.Properties{}) {
+						t.Errorf("%s %v, %g K at %g Pa: %+v, %v", name, model, T, p, at, err)
+					}
+				}
+			}
+		}
+	}
+	v := pure(t, "H2O", Best).(thermo.Balancer)
+	if b, err := v.Balance(400, 1e-316); err == nil {
+		t.Errorf("balance of water vapour at 1e-316 Pa: %+v", b)
+	}
+}

@@ -23,7 +23,7 @@ type cubic struct {
 // polar gases are those which hold together by more than size and attraction.
 var polar = map[string]bool{"H2O": true, "NH3": true, "SO2": true, "HCl": true, "NO": true, "NO2": true}
 
-var cubicBounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: 0, MaxP: 10e6}
+var cubicBounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: minP, MaxP: 10e6}
 
 func newCubic(c composition) *cubic {
 	m := &cubic{name: c.name, ideal: mix(c.parts), one: oneFluid(c.parts), fit: fitOf(c.parts)}

@@ -175,7 +175,17 @@ func newVapour(name string) thermo.Fluid {
 
 func (v vapourOfWater) Name() string { return v.name }
 
+// Bounds are those of steam, but the pressure begins where that of the other gases does.
+func (v vapourOfWater) Bounds() thermo.Bounds {
+	b := v.Fluid.Bounds()
+	b.MinP = max(b.MinP, minP)
+	return b
+}
+
 func (v vapourOfWater) At(T, p float64) (thermo.Properties, error) {
+	if p < minP {
+		return thermo.Properties{}, v.Bounds().Check(v.name, T, p, "range of a gas")
+	}
 	at, err := v.Fluid.At(T, p)
 	if err != nil {
 		return at, v.own(err)
@@ -186,6 +196,9 @@ func (v vapourOfWater) At(T, p float64) (thermo.Properties, error) {
 }
 
 func (v vapourOfWater) Balance(T, p float64) (thermo.Balance, error) {
+	if p < minP {
+		return thermo.Balance{}, v.Bounds().Check(v.name, T, p, "range of a gas")
+	}
 	at, err := v.balance(T, p)
 	if err != nil {
 		return at, v.own(err)

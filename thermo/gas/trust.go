@@ -24,7 +24,7 @@ type trust struct {
 // where each equation is named. H2O: IAPWS-95 at 400 K, 1 bar, since it is no gas
 // at 300 K and 1 bar. All others: second virial coefficient in corresponding
 // states, see [criticalPoint.virial]. The powers of H2O and NH3 are fitted to IAPWS-IF97 and
-// to Gao et al. (2020); those of the other polar gases are a guess on the safe side.
+// to Gao et al. (2023); those of the other polar gases are a guess on the safe side.
 var trusts = map[string]trust{
 	"N2":    plain(0.00155e-5, 0.00018e-5),
 	"O2":    plain(0.00169e-5, 0.00062e-5),
@@ -70,14 +70,15 @@ type fit struct{ cool, hot, cold float64 }
 
 // fits are the worst deviations from the tables in testdata/ideal-gas.csv over
 // √3, but not below 0.1 %. Hydrogen here and in JANAF is at the equilibrium of ortho and para; the
-// normal hydrogen of a plant has 0.6 % less cp at 200 K (Leachman et al. 2009).
+// normal hydrogen of a plant has 0.6 % less cp at 200 K (Leachman et al. 2009). For water
+// vapour the deviation from region 5 of IAPWS-IF97 counts, 0.46 % at 1500 K and 1.14 % at 2000 K.
 var fits = map[string]fit{
 	"N2":    {0.001, 0.001, 0},
 	"O2":    {0.001, 0.001, 0},
 	"Ar":    {0.001, 0.001, 0},
 	"CO2":   {0.001, 0.001, 0},
 	"CO":    {0.001, 0.001, 0},
-	"H2O":   {0.001, 0.0031, 0},
+	"H2O":   {0.001, 0.0047, 0},
 	"H2":    {0.001, 0.001, 0.0035},
 	"He":    {0.001, 0.001, 0},
 	"CH4":   {0.0051, 0.0288, 0},

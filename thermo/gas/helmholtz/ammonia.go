@@ -1,16 +1,16 @@
 package helmholtz
 
-// ammonia is the equation of state of ammonia. Its paper's range, 195.49 to 725 K
+// ammonia is the equation of state of ammonia, as the CoolProp fluid file of 2020 has it. Its paper's range, 195.49 to 725 K
 // and to 1000 MPa, and its paper's expanded uncertainty, density 0.2 %, cp 2 %,
 // are from memory.
 var ammonia = substance{
 	formula: "NH3", name: "ammonia",
-	source:    "Gao, Wu, Bell, Lemmon, J. Phys. Chem. Ref. Data 49 (2020) 013102",
+	source:    "Gao, Wu, Bell, Harvey, Lemmon, J. Phys. Chem. Ref. Data 52 (2023) 013102",
 	molarMass: 0.01703052, gasConstant: 8.3144598,
 	reducingT: 405.56, reducingDensity: 13696,
 	criticalT: 405.56, criticalP: 11363391.162815, tripleT: 195.49,
 	maxT: 725, maxP: 100e6,
-	stated: accuracy{cp: 0.02, ideal: 0.005, density: 0.002},
+	stated: accuracy{cp: 0.02, ideal: 0.0065, density: 0.002},
 	ideal: idealTerms{
 		logTau: 3,
 		oscillators: []oscillator{

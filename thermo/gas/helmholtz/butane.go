@@ -10,7 +10,7 @@ var butane = substance{
 	reducingT: 425.125, reducingDensity: 3922.7696129878,
 	criticalT: 425.125, criticalP: 3796000, tripleT: 134.895,
 	maxT: 575, maxP: 12e6,
-	stated: accuracy{cp: 0.01, ideal: 0.005, density: 0.001},
+	stated: accuracy{cp: 0.01, ideal: 0.0063, density: 0.001},
 	ideal: idealTerms{
 		logTau: 3.24680487,
 		oscillators: []oscillator{

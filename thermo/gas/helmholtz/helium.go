@@ -5,7 +5,7 @@ package helmholtz
 // are from memory.
 var helium = substance{
 	formula: "He", name: "helium",
-	source:    "Ortiz-Vega and others, J. Phys. Chem. Ref. Data (2019)",
+	source:    "Ortiz-Vega, Hall, Holste, Arp, Harvey, Lemmon, NISTIR 8474 (2023)",
 	molarMass: 0.004002602, gasConstant: 8.3144598,
 	reducingT: 5.1953, reducingDensity: 17383.7,
 	criticalT: 5.1953, criticalP: 228326.06990903, tripleT: 2.1768,

@@ -10,7 +10,7 @@ var methane = substance{
 	reducingT: 190.564, reducingDensity: 10139.128,
 	criticalT: 190.564, criticalP: 4599200, tripleT: 90.6941,
 	maxT: 625, maxP: 100e6,
-	stated: accuracy{cp: 0.01, ideal: 0.005, density: 0.0007},
+	stated: accuracy{cp: 0.01, ideal: 0.006, density: 0.0007},
 	ideal: idealTerms{
 		logTau: 3.0016,
 		oscillators: []oscillator{

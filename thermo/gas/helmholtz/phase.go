@@ -19,12 +19,16 @@ const (
 // substance here.
 const melting = 0.3e-6
 
+// leastP in Pa is where a gas begins: thinner, its molecules meet the wall of a pipe before one another, and far
+// thinner the arithmetic ends.
+const leastP = 1
+
 // gas is the gas of s, and above the critical pressure the fluid above the
 // critical temperature.
 func gas(s *substance) thermo.Fluid {
 	f := newFluid(s)
 	f.phase = thermo.Gas
-	f.bounds = thermo.Bounds{MinT: s.tripleT, MaxT: s.maxT, MaxP: s.maxP}
+	f.bounds = thermo.Bounds{MinT: s.tripleT, MaxT: s.maxT, MinP: leastP, MaxP: s.maxP}
 	return f
 }
 

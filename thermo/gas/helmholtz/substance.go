@@ -20,7 +20,7 @@ type substance struct {
 
 // accuracy is the expanded uncertainty (k = 2) of states off the critical region,
 // as fractions: cp and density as the papers have it, the larger where a paper
-// divides its range; ideal is that of cp of the dilute gas, by how far the ideal
+// divides its range; ideal is that of cp of the dilute gas, 2/√3 of how far the ideal
 // part is from other tables.
 type accuracy struct{ cp, ideal, density float64 }
 
