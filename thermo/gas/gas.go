@@ -18,9 +18,9 @@
 // [Reference] takes the reference equation of state of one gas, or of dry air, from package
 // helmholtz, and IAPWS-IF97 for water vapour.
 //
-// [Best] is the reference equation where there is one, and above its highest temperature goes
-// on by the differences in Peng and Robinson's, so that h, u and density have no step; all
-// other gases and mixtures are by Peng and Robinson. All models have the enthalpy 0 for the
+// [Best] is the reference equation where there is one, above its highest temperature up to 100 bar
+// its residuals carried on with the polynomials for the ideal part, so that h, u and density have no step and
+// every derivative its law; all other gases and mixtures are by Peng and Robinson. All models have the enthalpy 0 for the
 // thin gas at 298.15 K.
 //
 // Every model says what uncertainty is left at a state. That of the simpler ones holds their

@@ -61,95 +61,16 @@ func goesOn(err error) error {
 // equation.
 const beyondP = 10e6
 
-// extended is a reference equation and, above its highest temperature, Peng and Robinson
-// from there on.
-type extended struct {
-	thermo.Fluid
-	cubic *cubic
-	top   float64 // K, the highest temperature of the equation
-}
-
 // newBest returns the reference equation where there is one, else Peng and Robinson.
 func newBest(c composition) thermo.Fluid {
 	f, ok := referenceOf(c)
-	switch {
-	case !ok:
+	if !ok {
 		return newCubic(c)
-	case f.Bounds().MaxT >= maxT:
-		return f
 	}
-	return extended{f, newCubic(c), f.Bounds().MaxT}
-}
-
-// Source names both.
-func (e extended) Source() string {
-	return fmt.Sprintf("%s; above %.6g °C %s", e.Fluid.Source(), e.top-273.15, e.cubic.Source())
-}
-
-// Bounds are those of the equation, with more on top.
-func (e extended) Bounds() thermo.Bounds {
-	b := e.Fluid.Bounds()
-	b.MaxT = maxT
-	return b
-}
-
-// Span ends at the highest temperature of the equation where the pressure is above 10 MPa.
-func (e extended) Span(p float64) (lo, hi float64) {
-	lo, hi = e.Fluid.Span(p)
-	if p > beyondP {
-		hi = min(hi, e.top)
+	if g, ends := f.(helmholtz.Gas); ends && g.Bounds().MaxT < maxT {
+		return newExtended(g, c)
 	}
-	return lo, hi
-}
-
-// At carries on, above the highest temperature T0 of the equation, from what it leaves there by
-// the differences in Peng and Robinson's equation:
-//
-//	h = h(T0) + hPR(T) − hPR(T0)    ρ = ρPR(T) · ρ(T0)/ρPR(T0)    cp = cpPR    cv = cvPR
-//
-// So h, u and the density have no step at T0; cp and cv have one as large as the two equations
-// differ.
-func (e extended) At(T, p float64) (thermo.Properties, error) {
-	if !(T > e.top) {
-		return e.Fluid.At(T, p)
-	}
-	if err := e.check(T, p); err != nil {
-		return thermo.Properties{}, err
-	}
-	start, err1 := e.Fluid.At(e.top, p)
-	from, err2 := e.cubic.At(e.top, p)
-	at, err3 := e.cubic.At(T, p)
-	for _, err := range [...]error{err1, err2, err3} {
-		if err != nil {
-			return thermo.Properties{}, err
-		}
-	}
-	at.Enthalpy += start.Enthalpy - from.Enthalpy
-	at.Density *= start.Density / from.Density
-	at.InternalEnergy = at.Enthalpy - p/at.Density
-	return at, nil
-}
-
-func (e extended) check(T, p float64) error {
-	if err := e.Bounds().Check(e.Name(), T, p, "range of the ideal gas"); err != nil {
-		return err
-	}
-	if p > beyondP {
-		return &thermo.RangeError{Fluid: e.Name(), Quantity: "temperature", Value: T, Bound: e.top,
-			Why: "range of the reference equation; only up to 10 MPa does Peng-Robinson go on from there"}
-	}
-	return nil
-}
-
-// Uncertainty is, above the highest temperature of the equation, that of Peng and Robinson, and in
-// the density what it is where the equation ends.
-func (e extended) Uncertainty(T, p float64) (cp, density float64) {
-	if !(T > e.top) {
-		return e.Fluid.Uncertainty(T, p)
-	}
-	cp, _ = e.cubic.Uncertainty(T, p)
-	_, density = e.cubic.Uncertainty(e.top, p)
-	return cp, density
+	return f
 }
 
 // vapourOfWater is steam by IAPWS-IF97, under the name and on the zero of enthalpy of the other

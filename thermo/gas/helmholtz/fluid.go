@@ -85,8 +85,28 @@ func (f *fluid) At(T, p float64) (thermo.Properties, error) {
 }
 
 // properties at a density that is still off by what a Newton step of near leaves.
-// The derivatives give that remainder as well, to first order.
 func (f *fluid) properties(iso *isotherm, T, p, q, delta float64) thermo.Properties {
+	res, delta := f.residual(iso, q, delta)
+	u, cv := f.ideal.at(iso.tau)
+	rt := f.r * T
+	rho := delta * f.dense
+	internal := rt*(u+res.U) + f.offset
+	return thermo.Properties{
+		Enthalpy:       internal + p/rho,
+		InternalEnergy: internal,
+		Cp:             f.r * (cv + 1 + res.Cp),
+		Cv:             f.r * (cv + res.Cv),
+		Density:        rho,
+	}
+}
+
+// Residual is what a real gas has over the ideal one at the same T and p: u/(RT), cv/R and cp/R; and
+// its compressibility factor Z = p/(ρRT). R is that of the equation, see [Gas.Beyond].
+type Residual struct{ U, Cv, Cp, Z float64 }
+
+// residual brings the density to its last digits. The derivatives give what the last step
+// leaves of the energy as well, to first order.
+func (f *fluid) residual(iso *isotherm, q, delta float64) (r Residual, at float64) {
 	var s sums
 	var step, slope float64
 	for range 4 {
@@ -98,17 +118,35 @@ func (f *fluid) properties(iso *isotherm, T, p, q, delta float64) thermo.Propert
 			break
 		}
 	}
-	u, cv := f.ideal.at(iso.tau)
-	rt := f.r * T
-	cv -= s.tt
 	w := 1 + s.d - s.dt
-	rho := delta * f.dense
-	internal := rt*(u+s.t+s.dt*step/delta) + f.offset
-	return thermo.Properties{
-		Enthalpy:       internal + p/rho,
-		InternalEnergy: internal,
-		Cp:             f.r * (cv + w*w/slope),
-		Cv:             f.r * cv,
-		Density:        rho,
+	return Residual{
+		U:  s.t + s.dt*step/delta,
+		Cv: -s.tt,
+		Cp: w*w/slope - s.tt - 1,
+		Z:  q / delta,
+	}, delta
+}
+
+// Gas is a gas whose residuals are to be had beyond the highest temperature of its equation,
+// up to its highest pressure.
+type Gas interface {
+	thermo.Fluid
+	// Beyond returns the residuals at T in K, not below the highest temperature of the equation,
+	// and p in Pa, and the gas constant R in J/(kg K) that they go with. The error is that of
+	// At where the equation has no density.
+	Beyond(T, p float64) (r Residual, R float64, err error)
+}
+
+// Beyond is meant for [Gas]. Far above the critical temperature the residuals are small and fade out with
+// temperature; the tests hold how.
+func (f *fluid) Beyond(T, p float64) (r Residual, R float64, err error) {
+	var iso isotherm
+	f.equation.at(f.reducingT/T, &iso)
+	q := p / (f.dense * f.r * T)
+	delta, ok := f.equation.density(&iso, q, f.bracket(&iso, T, q))
+	if !ok {
+		return Residual{}, f.r, f.lost(T)
 	}
+	r, _ = f.residual(&iso, q, delta)
+	return r, f.r, nil
 }
