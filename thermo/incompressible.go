@@ -12,6 +12,9 @@ type PressureLaw struct {
 	// Fixed in K is the one temperature at which the right side is taken, for a fluid whose
 	// density does not depend on pressure; 0 where it is taken at every state.
 	Fixed float64
+	// Spread in m³/kg is how far the right side is at most, within the range, from the one
+	// that is fixed: by so much times a change of pressure an enthalpy difference is off.
+	Spread float64
 	// Ideal is that of a gas whose enthalpy does not depend on pressure, whatever its
 	// density makes of the right side.
 	Ideal bool
@@ -65,11 +68,9 @@ func (c *Incompressible) Properties(p, h0, cp, rho float64) Properties {
 }
 
 // PressureLaw is that of one temperature.
-func (c *Incompressible) PressureLaw() PressureLaw { return PressureLaw{Fixed: c.at} }
-
-// Spread is how far v − T dv/dT is at most, within the range, from the one that is taken,
-// in m³/kg: by so much times a change of pressure an enthalpy difference is off.
-func (c *Incompressible) Spread() float64 { return c.spread }
+func (c *Incompressible) PressureLaw() PressureLaw {
+	return PressureLaw{Fixed: c.at, Spread: c.spread}
+}
 
 // CpChange is what is left out of cp at p in J/(kg K), over the range on the mean: as
 // (∂cp/∂p)T is −T ∂²v/∂T², the distance of the pressure from one atmosphere times that of

@@ -55,9 +55,21 @@ func fallonWatson(sg, kw float64) quadratic {
 	return ofFahrenheit((0.355+0.128e-2*api)*k, (0.503+0.117e-2*api)*1e-3*k)
 }
 
-// criticalTemperature in K is that of Kesler and Lee (1976, from memory), with the mean
-// average boiling point in K that the Watson factor stands for, kw = (1.8 Tb)^(1/3)/SG.
+// boilingPoint is the mean average one in K that the Watson factor stands for, kw = (1.8
+// Tb)^(1/3)/SG.
+func boilingPoint(sg, kw float64) float64 { return math.Pow(kw*sg, 3) / 1.8 }
+
+// criticalTemperature in K is that of Kesler and Lee (1976, from memory).
 func criticalTemperature(sg, kw float64) float64 {
-	tb := math.Pow(kw*sg, 3) / 1.8
+	tb := boilingPoint(sg, kw)
 	return 189.8 + 450.6*sg + (0.4244+0.1174*sg)*tb + (0.1441-1.0069*sg)*1e5/tb
+}
+
+// criticalPressure in Pa is that of Kesler and Lee (1976, from memory).
+func criticalPressure(sg, kw float64) float64 {
+	tb := boilingPoint(sg, kw)
+	return 1e5 * math.Exp(5.689-0.0566/sg-
+		(0.43639+4.1216/sg+0.21343/(sg*sg))*1e-3*tb+
+		(0.47579+1.182/sg+0.15302/(sg*sg))*1e-6*tb*tb-
+		(2.4505+9.9099/(sg*sg))*1e-10*tb*tb*tb)
 }

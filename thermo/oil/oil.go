@@ -3,11 +3,14 @@
 // A petroleum liquid is known by its density at 15 °C and, better, its Watson factor. cp is
 // by Kesler and Lee (1976) where the Watson factor is known: it takes both, and its form is
 // what the handbooks of the trade went on with. Where only the density is known cp is by
-// Cragoe (1929), which asks for no more. Density is by the volume correction of ASTM
+// Cragoe (1929), which asks for no more, and outside of its range by Kesler and Lee at a
+// Watson factor usual in the group, with a wide uncertainty. Density is by the volume correction of ASTM
 // D1250-80 (ISO 91) for the product's group, -18 °C to 150 °C.
 //
-// The four published correlations of cp differ by up to 6.4 % over the states of the tests;
-// the spread at a state, but at least 5 %, is the uncertainty there. The volume correction
+// The four published correlations of cp differ by up to 6.4 % over the states of the tests,
+// whose Watson factors are those of the trade; over all densities from 640 kg/m³ to 1050
+// kg/m³ and Watson factors from 10 to 13 one of the others is up to 17.5 % away from Kesler
+// and Lee. The spread at a state, but at least 5 %, is the uncertainty there. The volume correction
 // repeats the outside figures to 5e-7, and its 15 °C and 60 °F forms agree within 9e-5 from
 // 0 °C to 100 °C above 640 kg/m³ (transition group 5e-4).
 //
@@ -23,8 +26,20 @@
 //
 //	h(T, p) = ∫ cp dT + (p − 101325 Pa) · (v − T dv/dT)
 //
-// Not modelled: the boiling of a petroleum cut, whose light ends nothing here tells (Span
-// has no upper end: keep it under pressure), wax and pour point, water in oil, blends of
+// Towards the ends of the range the term has another size. An enthalpy difference over a
+// change of pressure is off there, in kJ/kg per MPa, by up to 0.98 for the eutectic (at 397
+// °C, where the true term is as large as ours and of the other sign), 0.50 for the
+// terphenyl, 0.86 and 0.20 for mineral oils A and B, 0.05 to 0.1 for fuel oil and kerosene,
+// 0.25 to 0.35 for gasoline. That cp falls with pressure, which is the other side of it, is
+// in the uncertainty of cp, and the compression of petroleum (API MPMS 11.2.1M) in that of
+// its density.
+//
+// A petroleum cut of known Watson factor ends 30 K before a substance of its mean boiling
+// point boils, by Lee and Kesler (1975). That is a guard and not a bubble point: a gasoline
+// of the whole range boils some 60 K before, and a crude oil with gas in it anywhere.
+// Without the Watson factor nothing is known of it; keep such a liquid under pressure.
+//
+// Not modelled: light ends beyond that margin, wax and pour point, water in oil, blends of
 // groups, and the ageing of heat-transfer liquids.
 package oil
 

@@ -7,14 +7,11 @@ import (
 	"heatreeve/thermo"
 )
 
-// Watson factors of petroleum: aromatic 10, naphthenic 11, paraffinic 12.7 (from memory).
 const (
-	minWatson, maxWatson   = 10.0, 13.0
-	naphthenic, paraffinic = 11.0, 12.7
-	minPetroleumT          = 255.15 // K
-	maxPetroleumT          = 423.15 // K
-	cpHalfWidth            = 0.05   // fraction: correlations agree by chance
-	compressibility        = 1e-9   // 1/Pa, of a liquid petroleum (common practice, no source)
+	minWatson, maxWatson = 10.0, 13.0
+	minPetroleumT        = 255.15 // K
+	maxPetroleumT        = 423.15 // K
+	cpHalfWidth          = 0.05   // fraction: correlations agree by chance
 )
 
 type petroleum struct {
@@ -25,7 +22,10 @@ type petroleum struct {
 	alpha        float64   // 1/K
 	alphas       []float64 // of the other groups that it may belong to
 	maxT         float64
-	ends         string // what maxT is
+	ends         string   // what maxT is
+	boiling      *boiling // nil where it is not known
+	minP         float64  // Pa; below it boils at minPetroleumT
+	boilsBelow   float64  // Pa; from there on it boils beyond maxT
 	stiff        thermo.Incompressible
 }
 
@@ -33,10 +33,13 @@ type petroleum struct {
 // within the range of its group.
 //
 // watson is its Watson factor, 10 to 13, for the cp of Kesler and Lee up to a reduced
-// temperature of 0.85. With 0 it is not known, and cp is Cragoe's, for specific gravities
-// from 0.75 to 0.96.
+// temperature of 0.85, and for the vapour pressure: it ends 30 K before a substance of its
+// mean boiling point boils, and its light ends may boil earlier still. With 0 it is not
+// known. Then cp is Cragoe's for specific gravities from 0.75 to 0.96; beyond, from 0.70 to
+// 1.05, it is that of Kesler and Lee at a Watson factor usual in the group, and what it
+// would be from 10 to 12.7 goes into the uncertainty. When it boils is not known either.
 //
-// groupName is the product group of ASTM D1250 (see [Groups]). With "" it is that one of
+// groupName is the product group of ASTM D1250 (see [Groups] and [Group]). With "" it is that one of
 // the distillates into which the density falls, and what it would be by the other groups
 // goes into the uncertainty of density.
 func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error) {
@@ -53,10 +56,15 @@ func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error
 	} else {
 		f.name = fmt.Sprintf("%s %.6g kg/m³", g.name, density15)
 	}
-	if err := f.setHeat(g.specificGravity(density15), watson); err != nil {
+	if err := f.setHeat(g, g.specificGravity(density15), watson); err != nil {
 		return nil, fmt.Errorf("%s: %w", f.name, err)
 	}
-	f.source += ", density by ASTM D1250-80 for " + g.name
+	f.source += ", density by ASTM D1250-80 within the limits of API MPMS 11.1 (2004) for " + g.name
+	if f.boiling == nil {
+		f.source += ", boiling not known"
+	} else {
+		f.source += ", boiling by Lee and Kesler, AIChE Journal 21 (1975)"
+	}
 	f.stiff = thermo.NewIncompressible((minPetroleumT+f.maxT)/2, minPetroleumT, f.maxT, f.density)
 	return f, nil
 }
@@ -69,32 +77,6 @@ func otherAlphas(rho15 float64, chosen *group) (alphas []float64) {
 		}
 	}
 	return alphas
-}
-
-// setHeat chooses the correlation of cp.
-func (f *petroleum) setHeat(sg, watson float64) error {
-	switch {
-	case watson == 0 && !(sg >= cragoeMinSG && sg <= cragoeMaxSG):
-		return fmt.Errorf("specific gravity is %.5g, and Cragoe's cp goes from %g to %g; give the Watson factor", sg, cragoeMinSG, cragoeMaxSG)
-	case watson == 0:
-		f.cp, f.source = cragoe(sg), "cp by Cragoe, NBS Miscellaneous Publication 97 (1929)"
-		for _, kw := range []float64{naphthenic, paraffinic} {
-			f.others = append(f.others, keslerLee(sg, kw), api7D22(sg, kw), fallonWatson(sg, kw))
-		}
-		return nil
-	case !(watson >= minWatson && watson <= maxWatson):
-		return fmt.Errorf("watson factor of %g; it lies from %g to %g, or is 0 where it is not known", watson, minWatson, maxWatson)
-	}
-	f.name += fmt.Sprintf(", Watson %.4g", watson)
-	f.cp, f.source = keslerLee(sg, watson), "cp by Kesler and Lee, Hydrocarbon Processing 55(3) (1976)"
-	f.others = []quadratic{cragoe(sg), api7D22(sg, watson), fallonWatson(sg, watson)}
-	if limit := keslerLeeReduced * criticalTemperature(sg, watson); limit < f.maxT {
-		f.maxT, f.ends = limit, "reduced temperature of 0.85, where Kesler and Lee's cp ends"
-	}
-	if f.maxT <= minPetroleumT {
-		return fmt.Errorf("a Watson factor of %g makes it so light that it has a reduced temperature of %g at %.4g °C already", watson, keslerLeeReduced, f.maxT-zeroC)
-	}
-	return nil
 }
 
 // density is ρ in kg/m³ at T in K, and dρ/dT: with ρ = ρ15 exp(−x (1 + 0.8 x)), x = α (T −
@@ -115,23 +97,47 @@ func (f *petroleum) Phase() thermo.Phase { return thermo.Liquid }
 func (f *petroleum) MolarMass() float64 { return 0 }
 
 func (f *petroleum) Bounds() thermo.Bounds {
-	return thermo.Bounds{MinT: minPetroleumT, MaxT: f.maxT, MaxP: maxPressure}
+	return thermo.Bounds{MinT: minPetroleumT, MaxT: f.maxT, MinP: f.minP, MaxP: maxPressure}
 }
 
-// Span has no ends: neither pour point nor boiling point of a cut is modelled.
-func (f *petroleum) Span(float64) (lo, hi float64) { return 0, math.Inf(1) }
+// Span ends 30 K before a substance of the cut's mean boiling point boils, where the Watson
+// factor is known and that lies within the range; it begins nowhere, as no pour point is
+// modelled.
+func (f *petroleum) Span(p float64) (lo, hi float64) {
+	switch {
+	case f.boiling == nil || p >= f.boilsBelow:
+		return 0, math.Inf(1)
+	case !(p >= f.minP):
+		return 0, minPetroleumT
+	}
+	return 0, f.boiling.temperature(p) - boilingMargin
+}
 
 func (f *petroleum) At(T, p float64) (thermo.Properties, error) {
-	if err := f.Bounds().Check(f.name, T, p, f.why(T)); err != nil {
+	if err := f.Bounds().Check(f.name, T, p, f.why(T, p)); err != nil {
 		return thermo.Properties{}, err
+	}
+	if p < f.boilsBelow && f.boiling.pressure(T+boilingMargin) > p {
+		return thermo.Properties{}, f.boils(T, p)
 	}
 	h := f.cp.integral(T) - f.cp.integral(fifteenC)
 	return f.stiff.Properties(p, h, f.cp.at(T), f.density15*correction(f.alpha, T-fifteenC)), nil
 }
 
-func (f *petroleum) why(T float64) string {
-	if T > f.maxT {
+func (f *petroleum) boils(T, p float64) error {
+	_, bound := f.Span(p)
+	return &thermo.RangeError{
+		Fluid: f.name, Quantity: "temperature", Value: T, Bound: bound,
+		Why: "boiling point of a substance like it at this pressure, less 30 K for its light ends",
+	}
+}
+
+func (f *petroleum) why(T, p float64) string {
+	switch {
+	case T > f.maxT:
 		return f.ends
+	case T >= minPetroleumT && p < f.minP:
+		return "it boils at any temperature of its range"
 	}
 	return "range of ASTM D1250-80"
 }
@@ -143,8 +149,8 @@ func (f *petroleum) why(T float64) string {
 // That of density is the root sum of squares of three: the precision of the volume
 // correction, at 95 % 0.05 % up to 38 °C and 0.1 % more for every 28 K above (ASTM
 // D1250-80, from memory), halved; as rectangles the widest deviation of the other groups
-// where none was named; and the compression from 1 atm that is left out, 1e-9 a pascal. The
-// density at 15 °C is taken for exact.
+// where none was named; and the compression from 1 atm that is left out (see
+// compressibility). The density at 15 °C is taken for exact.
 func (f *petroleum) Uncertainty(T, p float64) (cp, density float64) {
 	half, at := cpHalfWidth, f.cp.at(T)
 	for k := range f.others {
@@ -156,6 +162,7 @@ func (f *petroleum) Uncertainty(T, p float64) (cp, density float64) {
 	}
 	const hundredF, fiftyF = 310.93, 27.78 // K
 	precision := (0.0005 + 0.001*max(0, T-hundredF)/fiftyF) / 2
-	compressed := compressibility * math.Abs(p-thermo.Atmosphere)
+	compressed := compressibility(f.density15, T) * math.Abs(p-thermo.Atmosphere)
+	half += f.stiff.CpChange(p) / at
 	return half / math.Sqrt(3), math.Sqrt(precision*precision + (other*other+compressed*compressed)/3)
 }

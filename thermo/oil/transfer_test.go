@@ -160,3 +160,33 @@ func TestTransferNames(t *testing.T) {
 		t.Errorf("600 K at 2 bar: %v", err)
 	}
 }
+
+// Half-widths as fractions; nothing printed tells them from Cragoe for oil A at 100 °C.
+func TestTransferUncertainty(t *testing.T) {
+	for name, want := range map[string][2]float64{
+		"diphenyl oxide/biphenyl eutectic": {0.03, 0.015}, "modified terphenyl": {0.03, 0.01}, "mineral oil A": {0.05, 0.01}, "mineral oil B": {0.05, 0.01},
+	} {
+		f := must(t)(HeatTransfer(name))
+		cp, density := f.Uncertainty(350, atm)
+		if r := math.Sqrt(3); math.Abs(cp*r-want[0]) > 1e-12 || math.Abs(density*r-want[1]) > 1e-12 {
+			t.Errorf("%s: half-widths %g, %g; want %g", name, cp*r, density*r, want)
+		}
+		if more, _ := f.Uncertainty(350, 2e6); !(more > cp) {
+			t.Errorf("%s: %g at 2 MPa, %g at 1 atm", name, more, cp)
+		}
+	}
+}
+
+// What a pressure term from the middle of the range misses at its ends, in kJ/kg per MPa:
+// 1.0 for the eutectic, whose term is 0.49 in the middle and by its own table -0.49 at the hot
+// end; less for the others.
+func TestSpreadOfPressureTerm(t *testing.T) {
+	for name, limit := range map[string]float64{"diphenyl oxide/biphenyl eutectic": 1.05, "modified terphenyl": 0.55, "mineral oil A": 0.9, "mineral oil B": 0.25} {
+		f := must(t)(HeatTransfer(name))
+		spread := f.(thermo.Compressed).PressureLaw().Spread * 1e3
+		t.Logf("%s: %.2f kJ/kg per MPa", name, spread)
+		if !(spread < limit && spread > 0.7*limit) {
+			t.Errorf("%s: %.3g kJ/kg per MPa, want at most %g", name, spread, limit)
+		}
+	}
+}

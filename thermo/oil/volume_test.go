@@ -2,6 +2,7 @@ package oil
 
 import (
 	"math"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -25,7 +26,7 @@ func TestVolumeCorrection(t *testing.T) {
 		if a := g.alpha(rho15); math.Abs(a-r.number(t, "alpha15_per_K")) > 5.1e-10 {
 			t.Errorf("%s %g: alpha %.6g, want %s", g.name, rho15, a, r["alpha15_per_K"])
 		}
-		s, err := must(t)(Petroleum(rho15, 12, r["group"])).At(T, atm)
+		s, err := must(t)(Petroleum(rho15, 12, r["group"])).At(T, maxPressure)
 		if err != nil {
 			t.Error(err)
 			continue
@@ -119,6 +120,77 @@ func TestGroupByDensity(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
+	for k := range 3 {
+		a, b := &groups[k], &groups[k+1]
+		last, next := rho15At(a, a.maxRho60), rho15At(b, b.minRho60)
+		t.Logf("%s ends at %.5f kg/m³ at 15 °C, %s begins at %.5f", a.name, last, b.name, next)
+		for i := -300; i <= 300; i++ {
+			rho := last + 1e-5*float64(i)
+			want := a
+			if rho > last {
+				want = b
+			}
+			if g, err := groupFor(rho, ""); err != nil || i != 0 && g != want {
+				t.Errorf("%.7g kg/m³: %v, %v; want %s", rho, g, err, want.name)
+			}
+			if _, err := DensityOfAPI(141.5*waterAt60F/(a.maxRho60+1e-5*float64(i))-131.5, ""); err != nil {
+				t.Error(err)
+			}
+		}
+	}
+}
+
+// rho15At is the density at 15 °C of one at 60 °F, by bisection.
+func rho15At(g *group, rho60 float64) float64 {
+	lo, hi := rho60, 1.01*rho60
+	for range 60 {
+		if mid := (lo + hi) / 2; g.rho60(mid) < rho60 {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	return lo
+}
+
+// Each group has its names, in any spelling.
+func TestGroupNames(t *testing.T) {
+	for written, want := range map[string]string{
+		"Gasoline": "gasoline", "petrol": "gasoline", "Kerosene": "jet-kerosene", "Jet Fuel": "jet-kerosene", "jet kerosene": "jet-kerosene",
+		"crude": "crude oil", "LUBE-OIL": "lubricating oil", "heavy fuel oil": "fuel oil", "diesel": "fuel oil", "gas oil": "fuel oil", "gasoil": "fuel oil",
+		"heating oil": "fuel oil", "transition": "transition",
+	} {
+		if got, err := Group(written); err != nil || got != want {
+			t.Errorf("Group(%q) = %q, %v; want %q", written, got, err, want)
+		}
+	}
+	if g, err := Group("desel"); err == nil || !strings.Contains(err.Error(), `did you mean "fuel oil"`) {
+		t.Errorf("Group(desel) = %q, %v", g, err)
+	}
+	count := 0
+	for _, group := range Groups() {
+		for _, also := range GroupAliases(group) {
+			count++
+			g := &groups[slices.Index(Groups(), group)]
+			f, err := Petroleum(rho15At(g, (g.minRho60+g.maxRho60)/2), 12, also)
+			if err != nil || !strings.HasPrefix(f.Name(), group+" ") {
+				t.Errorf("%q: %v, %v; want %s", also, f, err, group)
+			}
+		}
+	}
+	if count != len(alsoGroups) {
+		t.Errorf("%d other names, want %d", count, len(alsoGroups))
+	}
+}
+
+// Compressibility by hand: 650 kg/m³ at 20 °C has −1.6208 + 0.004318 + (0.87096 + 0.084184)
+// · 2.366864 = 0.644216, and e to that is 1.9045; at 85 °C 3.6907.
+func TestCompressibility(t *testing.T) {
+	for _, tt := range []struct{ rho, celsius, want float64 }{{650, 20, 1.9045e-9}, {650, 85, 3.6907e-9}, {850, 20, 0.74492e-9}} {
+		if got := compressibility(tt.rho, tt.celsius+zeroC); math.Abs(got/tt.want-1) > 2e-5 {
+			t.Errorf("%g kg/m³ at %g °C: %.5g 1/Pa, want %.5g", tt.rho, tt.celsius, got, tt.want)
+		}
+	}
 }
 
 func TestGroupRefuses(t *testing.T) {
@@ -135,15 +207,6 @@ func TestGroupRefuses(t *testing.T) {
 	} {
 		if _, err := groupFor(tt.rho, tt.group); err == nil || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("%g kg/m³ of %q: %v; want an error with %q", tt.rho, tt.group, err, tt.want)
-		}
-	}
-	for other, name := range alsoGroups {
-		for k := range groups {
-			if groups[k].name == name {
-				if _, err := choose(other, func(g *group) float64 { return g.minRho60 }); err != nil {
-					t.Error(err)
-				}
-			}
 		}
 	}
 }

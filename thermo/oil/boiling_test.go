@@ -1,0 +1,75 @@
+package oil
+
+import (
+	"errors"
+	"math"
+	"strings"
+	"testing"
+
+	"heatreeve/thermo"
+)
+
+// Vapour pressures of n-hexane and n-decane by the Antoine equations of the NIST Chemistry
+// WebBook (from memory), log10(p/bar) = a − b/(T/K + c), within 3 %; critical points of
+// handbooks (from memory), 30.25 and 21.1 bar, within 4 %.
+func TestVapourPressure(t *testing.T) {
+	for _, tt := range []struct{ sg, tb, pc, a, b, c float64 }{
+		{0.6640, 341.9, 30.25e5, 4.00266, 1171.53, -48.784},
+		{0.7342, 447.3, 21.1e5, 4.07857, 1501.268, -78.67},
+	} {
+		b := newBoiling(tt.sg, math.Cbrt(1.8*tt.tb)/tt.sg)
+		if math.Abs(b.pc/tt.pc-1) > 0.04 {
+			t.Errorf("boils at %g K: critical pressure %.4g Pa, want %g", tt.tb, b.pc, tt.pc)
+		}
+		if got := b.pressure(tt.tb); math.Abs(got/101325-1) > 1e-12 {
+			t.Errorf("%g Pa at its boiling point of %g K", got, tt.tb)
+		}
+		for T := 293.15; T < 374; T += 20 {
+			want := 1e5 * math.Pow(10, tt.a-tt.b/(T+tt.c))
+			got := b.pressure(T)
+			t.Logf("boils at %g K: %.4g Pa at %g K, Antoine %.4g", tt.tb, got, T, want)
+			if T > 330 || tt.tb < 400 { // below, the equation of decane is extrapolated
+				if math.Abs(got/want-1) > 0.03 {
+					t.Errorf("%.5g Pa at %g K, want %.5g", got, T, want)
+				}
+			}
+			if back := b.temperature(got); math.Abs(back-T) > 1e-9 {
+				t.Errorf("%g Pa: boils at %.12g K, want %g", got, back, T)
+			}
+		}
+	}
+}
+
+// A cut ends 30 K before a substance of its mean boiling point boils: one of Watson 12 and
+// 720 kg/m³ (SG 0.7203) has that at (12·0.7203)³/1.8 = 358.8 K and one atmosphere.
+func TestBoilingEndsThePhase(t *testing.T) {
+	f := must(t)(Petroleum(720, 12, "gasoline"))
+	_, hi := f.Span(101325)
+	if math.Abs(hi-328.8) > 0.3 {
+		t.Errorf("ends at %.2f K, want 328.8", hi)
+	}
+	if _, high := f.Span(maxPressure); !math.IsInf(high, 1) {
+		t.Errorf("ends at %g K under %g Pa", high, maxPressure)
+	}
+	_, err := f.At(hi+0.01, 101325)
+	if e := new(thermo.RangeError); !errors.As(err, &e) || e.Bound != hi || !strings.HasPrefix(e.Why, "boiling point of a substance like it") {
+		t.Errorf("above: %v", err)
+	}
+	if _, err := f.At(hi-0.01, 101325); err != nil {
+		t.Error(err)
+	}
+	_, err = f.At(260, 100)
+	if e := new(thermo.RangeError); !errors.As(err, &e) || e.Quantity != "pressure" || !strings.Contains(e.Why, "boils") {
+		t.Errorf("260 K at 100 Pa: %v", err)
+	}
+}
+
+func TestBoilingIsNotKnownWithoutWatson(t *testing.T) {
+	f := must(t)(Petroleum(720, 0, "gasoline"))
+	if _, hi := f.Span(1e4); !math.IsInf(hi, 1) || !strings.Contains(f.Source(), "boiling not known") {
+		t.Errorf("%s spans to %g K", f.Source(), hi)
+	}
+	if g := must(t)(Petroleum(720, 12, "gasoline")); strings.Contains(g.Source(), "not known") || !strings.Contains(g.Source(), "Lee and Kesler") {
+		t.Error(g.Source())
+	}
+}
