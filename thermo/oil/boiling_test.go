@@ -73,3 +73,16 @@ func TestBoilingIsNotKnownWithoutWatson(t *testing.T) {
 		t.Error(g.Source())
 	}
 }
+
+// The critical pressure as its authors wrote it, in psi with the boiling point in °R (from
+// memory), meets the form in SI within 2e-3.
+func TestCriticalPressure(t *testing.T) {
+	for _, tt := range []struct{ sg, kw float64 }{{0.65, 12.8}, {0.8, 11.8}, {0.95, 11.4}, {1.05, 10}} {
+		T := math.Pow(tt.sg*tt.kw, 3)
+		psi := math.Exp(8.3634 - 0.0566/tt.sg - (0.24244+2.2898/tt.sg+0.11857/(tt.sg*tt.sg))*1e-3*T +
+			(1.4685+3.648/tt.sg+0.47227/(tt.sg*tt.sg))*1e-7*T*T - (0.42019+1.6977/(tt.sg*tt.sg))*1e-10*T*T*T)
+		if got := criticalPressure(tt.sg, tt.kw); math.Abs(got/(psi*6894.757)-1) > 2e-3 {
+			t.Errorf("SG %g, Watson %g: %.6g Pa, want %.6g", tt.sg, tt.kw, got, psi*6894.757)
+		}
+	}
+}

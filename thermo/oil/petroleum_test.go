@@ -3,6 +3,7 @@ package oil
 import (
 	"errors"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -184,6 +185,23 @@ func TestUnknownWatson(t *testing.T) {
 	if got := u * math.Sqrt(3); math.Abs(got-0.0766) > 2e-4 {
 		t.Errorf("SG 0.85: half-width %.5f, want 0.0766", got)
 	}
+	// Hot and heavy, paraffinic oil is the farthest, API 7D2.2 at 12.7.
+	rho15, err = DensityOfAPI(141.5/0.95-131.5, "fuel oil")
+	if err != nil {
+		t.Fatal(err)
+	}
+	heavy := must(t)(Petroleum(rho15, 0, "fuel oil"))
+	u, _ = heavy.Uncertainty(423.15, atm)
+	c, farthest := cragoe(0.95), api7D22(0.95, 12.7)
+	if got, want := u*math.Sqrt(3), farthest.at(423.15)/c.at(423.15)-1; math.Abs(got-want) > 1e-5 {
+		t.Errorf("SG 0.95 at 150 °C: half-width %.5f, want %.5f", got, want)
+	}
+	// Under pressure cp falls: by 2 MPa times the mean slope of v − T dv/dT.
+	law := heavy.(thermo.Compressed).PressureLaw()
+	more, _ := heavy.Uncertainty(423.15, atm+2e6)
+	if d := (more - u) * math.Sqrt(3) * c.at(423.15) * (maxPetroleumT - minPetroleumT); !(d > 2e6*law.Spread && d < 4e6*law.Spread) {
+		t.Errorf("2 MPa add %.3g J/kg over the range, the spread of the term makes %.3g", d, 2e6*law.Spread)
+	}
 	rho15, err = DensityOfAPI(141.5/0.99-131.5, "fuel oil")
 	if err != nil {
 		t.Fatal(err)
@@ -203,8 +221,8 @@ func TestUnknownWatson(t *testing.T) {
 	if half := u * math.Sqrt(3); !(half > 0.083 && half < 0.25) {
 		t.Errorf("half-width %.4f", half)
 	}
-	for group, usual := range map[string]float64{"gasoline": 12, "fuel oil": 11.5} {
-		if k := groups[map[string]int{"gasoline": 0, "fuel oil": 3}[group]]; k.name != group || k.watson != usual {
+	for group, usual := range map[string]float64{"gasoline": 12, "transition": 11.9, "jet-kerosene": 11.8, "fuel oil": 11.5, "crude oil": 12, "lubricating oil": 12.2} {
+		if k := groups[slices.Index(Groups(), group)]; k.watson != usual {
 			t.Errorf("%+v, want %s of %g", k, group, usual)
 		}
 	}
