@@ -2,6 +2,7 @@ package site
 
 import (
 	"errors"
+	"fmt"
 	"maps"
 	"slices"
 	"strings"
@@ -111,19 +112,20 @@ func (r *reader) fluid(v value) (string, thermo.Fluid) {
 	case err == nil:
 		return f.Name(), f
 	case errors.As(err, &unknown):
-		v.fault("fluid %q is not known%s", clip(s), r.instead(s))
+		v.fault("%s", r.instead(unknown))
 	default:
 		v.fault("%v", err)
 	}
 	return s, nil
 }
 
-// instead tells the fluids that there are, those first that s may have meant.
-func (r *reader) instead(s string) string {
+// instead tells the fluids that there are, those first that the unknown name may have
+// meant.
+func (r *reader) instead(unknown *named.UnknownError) string {
 	declared := slices.Sorted(maps.Keys(r.fluids))
-	say := ""
-	if guess := append(near.Names(s, declared), named.Near(s)...); len(guess) > 0 {
-		say = "; near: " + list(guess)
+	say := unknown.Hint()
+	if guess := near.Names(unknown.Name, declared); len(guess) > 0 {
+		say = fmt.Sprintf("fluid %q is not known; near: %s", clip(unknown.Name), list(append(guess, unknown.Near()...)))
 	}
 	if len(declared) > 0 {
 		say += "; declared: " + list(declared)

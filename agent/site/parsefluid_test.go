@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"regexp"
 	"strings"
 	"testing"
 )
@@ -65,6 +66,24 @@ func TestParseFluidFaults(t *testing.T) {
 		f, err := ParseFluid(tt.text)
 		if err == nil || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("ParseFluid(%q) = %v, %v; want ...%q...", tt.text, f, err, tt.want)
+		}
+	}
+}
+
+// What a name of the trade is answered with is a declaration that is read.
+func TestAdviceIsGood(t *testing.T) {
+	declared := regexp.MustCompile(`\{(?:gas|flue gas|food|table): .*?\}\}+`)
+	for _, name := range []string{
+		"natural gas", "biogas", "syngas", "flue gas", "thermal oil", "beer", "yogurt", "apple juice", "syrup", "vegetable oil", "caustic", "R134a", "whole milk 2 %", "methane 92 %",
+	} {
+		_, err := ParseFluid(name)
+		if err == nil {
+			t.Errorf("%q is a fluid", name)
+			continue
+		}
+		text := declared.FindString(err.Error())
+		if f, err := ParseFluid(text); err != nil {
+			t.Errorf("%q leads to %q: %v, %v", name, text, f, err)
 		}
 	}
 }

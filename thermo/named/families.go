@@ -34,8 +34,8 @@ var otherwise = []func(name string) (thermo.Fluid, error){
 
 func waters() []*word {
 	return []*word{
-		{name: "water", also: []string{"liquid water"}, make: is(water.Liquid)},
-		{name: "steam", also: []string{"superheated steam", "water vapour", "H2O"}, make: is(water.Steam)},
+		{name: "water", also: []string{"liquid water", "H2O"}, make: is(water.Liquid)},
+		{name: "steam", also: []string{"superheated steam", "water vapour"}, make: is(water.Steam)},
 	}
 }
 
@@ -46,7 +46,7 @@ func gases() []*word {
 			continue // steam, by its own formulation
 		}
 		pure := func(strength) (thermo.Fluid, error) { return gas.New(map[string]float64{formula: 1}, gas.Best) }
-		w := &word{name: formula, make: pure}
+		w := &word{name: formula, gas: true, make: pure}
 		if f, err := pure(strength{}); err == nil && fold(f.Name()) != fold(formula) {
 			w.name, w.also = f.Name(), []string{formula}
 		}
@@ -92,7 +92,7 @@ func solutions() []*word {
 			panic(err) // the family lists what it does not know
 		}
 		ws = append(ws, &word{
-			name: solute, also: limits.Aliases, dimension: unit.Ratio, sample: "20 %", volume: limits.VolumeFraction > 0,
+			name: solute, also: limits.Aliases, dimension: unit.Ratio, sample: "20 %", volume: limits.VolumeFraction > 0, solution: true,
 			make: func(s strength) (thermo.Fluid, error) {
 				if s.byVolume {
 					return aqueous.NewByVolume(solute, s.SI(), 0)
@@ -124,7 +124,7 @@ func petroleums() []*word {
 	for _, group := range append([]string{""}, oil.Groups()...) {
 		ws = append(ws, &word{
 			name: cmp.Or(group, "petroleum"), dimension: unit.Density, sample: cmp.Or(samples[group], samples[""]),
-			make: func(s strength) (thermo.Fluid, error) { return oil.Petroleum(s.SI(), 0, group) },
+			make: func(s strength) (thermo.Fluid, error) { return s.petroleum(group) },
 		})
 	}
 	return ws

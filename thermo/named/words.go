@@ -1,6 +1,7 @@
 package named
 
 import (
+	"slices"
 	"sync"
 
 	"heatreeve/thermo"
@@ -14,7 +15,17 @@ type word struct {
 	dimension unit.Dimension // of the strength that must follow; 0 for none
 	sample    string         // a strength as it may be written
 	volume    bool           // the strength may be by volume
+	gas       bool           // which the name may tell as well
+	solution  bool           // in water, which the name may tell as well
+	aside     bool           // a name of the trade: found, but not in the list
 	make      func(strength) (thermo.Fluid, error)
+}
+
+// called is the word aside, under another name.
+func (w *word) called(name string) *word {
+	other := *w
+	other.name, other.aside = name, true
+	return &other
 }
 
 // example is the name as it may be looked up.
@@ -27,8 +38,13 @@ func (w *word) example() string {
 
 // asks is what must follow the name.
 func (w *word) asks() string {
-	if w.dimension == unit.Density {
+	switch {
+	case w.dimension == unit.Density:
 		return "density at 15 °C"
+	case w.name == "seawater":
+		return "salinity"
+	case w.name == "moist air":
+		return "humidity ratio"
 	}
 	return "strength"
 }
@@ -69,18 +85,25 @@ func (l *lexicon) of(key string) *word {
 
 var index = sync.OnceValue(func() *lexicon {
 	l := &lexicon{plain: make(map[string]*word), strong: make(map[string]*word)}
-	for _, w := range words() {
-		found := l.plain
-		if w.dimension != 0 {
-			found = l.strong
-		}
+	for _, w := range slices.Concat(words(), products()) {
 		for _, name := range append([]string{w.name}, w.also...) {
-			key := fold(name)
-			if _, taken := found[key]; !taken {
-				found[key] = w
-				l.keys = append(l.keys, key)
-			}
+			l.add(name, w)
 		}
+	}
+	for _, a := range asides() {
+		l.add(a.name, l.of(fold(a.of)).called(a.name))
 	}
 	return l
 })
+
+// add has a word found by a name that no word before it has.
+func (l *lexicon) add(name string, w *word) {
+	found, key := l.plain, fold(name)
+	if w.dimension != 0 {
+		found = l.strong
+	}
+	if _, taken := found[key]; !taken {
+		found[key] = w
+		l.keys = append(l.keys, key)
+	}
+}

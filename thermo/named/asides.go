@@ -1,0 +1,66 @@
+package named
+
+import (
+	"slices"
+
+	"heatreeve/thermo"
+	"heatreeve/thermo/unit"
+)
+
+// aside is a name of the trade for a fluid of the list. The numbers of refrigerants are
+// those of ASHRAE 34 (from memory).
+type aside struct{ name, of string }
+
+func asides() []aside {
+	return slices.Concat(
+		called("water", "hot water", "cold water", "warm water", "chilled water", "cooling water", "ice water", "tap water", "fresh water", "process water",
+			"feed water", "boiler feed water", "boiler water", "district heating water", "demineralised water", "deionised water", "condensate", "R718"),
+		called("dry air", "compressed air", "instrument air", "hot air", "combustion air", "R729"),
+		called("potassium formate", "K-formate"), called("potassium acetate", "K-acetate"), called("potassium carbonate", "potash"),
+		called("ethylene glycol", "ethylen glycol"), called("propylene glycol", "propylen glycol"),
+		called("calcium chloride", "calcium brine"),
+		called("liquid nitrogen", "LIN"), called("liquid oxygen", "LOX"),
+		refrigerantNumbers(),
+	)
+}
+
+func called(of string, names ...string) (as []aside) {
+	for _, name := range names {
+		as = append(as, aside{name, of})
+	}
+	return as
+}
+
+func refrigerantNumbers() (as []aside) {
+	for _, r := range []aside{
+		{"R717", "NH3"}, {"R744", "CO2"}, {"R290", "C3H8"}, {"R600", "n-butane"}, {"R601", "n-pentane"}, {"R170", "C2H6"}, {"R50", "CH4"}, {"R1150", "C2H4"},
+		{"R728", "N2"}, {"R732", "O2"}, {"R740", "Ar"}, {"R702", "H2"}, {"R704", "He"}, {"R764", "SO2"}, {"R744A", "N2O"},
+	} {
+		as = append(as, r)
+		if liquid := "liquid " + r.of; slices.ContainsFunc(liquefied(), func(w *word) bool { return fold(w.name) == fold(liquid) || fold(w.also[0]) == fold(liquid) }) {
+			as = append(as, aside{"liquid " + r.name, liquid})
+		}
+	}
+	return as
+}
+
+// products are petroleum liquids by their names of the trade, each with the group of
+// ASTM D1250 by which its density is corrected: with "" the one that has its density.
+func products() (ws []*word) {
+	for _, p := range []struct{ name, sample, group string }{
+		{"diesel", "840 kg/m3", ""}, {"diesel oil", "840 kg/m3", ""}, {"diesel fuel", "840 kg/m3", ""}, {"gas oil", "845 kg/m3", ""}, {"marine gas oil", "855 kg/m3", ""},
+		{"heating oil", "845 kg/m3", ""}, {"light fuel oil", "845 kg/m3", ""},
+		{"petrol", "750 kg/m3", "gasoline"}, {"naphtha", "720 kg/m3", "gasoline"},
+		{"kerosene", "800 kg/m3", "jet-kerosene"}, {"kerosine", "800 kg/m3", "jet-kerosene"}, {"jet fuel", "800 kg/m3", "jet-kerosene"},
+		{"heavy fuel oil", "960 kg/m3", "fuel oil"}, {"residual fuel oil", "960 kg/m3", "fuel oil"}, {"HFO", "960 kg/m3", "fuel oil"}, {"bunker oil", "960 kg/m3", "fuel oil"},
+		{"crude", "870 kg/m3", "crude oil"},
+		{"lube oil", "880 kg/m3", "lubricating oil"}, {"lubricant", "880 kg/m3", "lubricating oil"}, {"hydraulic oil", "870 kg/m3", "lubricating oil"},
+		{"gear oil", "890 kg/m3", "lubricating oil"}, {"turbine oil", "870 kg/m3", "lubricating oil"}, {"engine oil", "880 kg/m3", "lubricating oil"},
+	} {
+		ws = append(ws, &word{
+			name: p.name, aside: true, dimension: unit.Density, sample: p.sample,
+			make: func(s strength) (thermo.Fluid, error) { return s.petroleum(p.group) },
+		})
+	}
+	return ws
+}
