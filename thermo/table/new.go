@@ -9,8 +9,8 @@ import (
 )
 
 // New returns the fluid that the rows describe, under a name and with the source of the
-// figures. Rows are above zero and at most 1e6 in SI units, and their temperatures rise
-// from row to row. The error names every row, by its number from 1, and every option that
+// figures. Rows are at least 1 K, 1 J/(kg K) and 1e-4 kg/m³ and at most 1e6 in SI units,
+// and their temperatures rise from row to row. The error names every row, by its number from 1, and every option that
 // is wrong.
 func New(name, source string, points []Point, opts Options) (thermo.Fluid, error) {
 	opts = opts.withDefaults()
@@ -43,8 +43,14 @@ func checkNames(name, source string) (faults []error) {
 	return faults
 }
 
-// largest is far beyond any temperature, cp or density of a plant, in SI units.
-const largest = 1e6
+// Far beyond any temperature, cp or density of a plant, in SI units: between these figures no
+// property overflows.
+const (
+	leastT       = 1.0  // K
+	leastCp      = 1.0  // J/(kg K)
+	leastDensity = 1e-4 // kg/m³
+	largest      = 1e6
+)
 
 func checkPoints(points []Point) (faults []error) {
 	if len(points) == 0 {
@@ -52,11 +58,11 @@ func checkPoints(points []Point) (faults []error) {
 	}
 	for k, p := range points {
 		for _, c := range []struct {
-			name, unit string
-			value      float64
-		}{{"temperature", "K", p.T}, {"cp", "J/(kg K)", p.Cp}, {"density", "kg/m³", p.Density}} {
-			if !(c.value > 0 && c.value <= largest) {
-				faults = append(faults, fmt.Errorf("row %d: %s of %g %s; it must be above zero and at most %g", k+1, c.name, c.value, c.unit, largest))
+			name, unit   string
+			value, least float64
+		}{{"temperature", "K", p.T, leastT}, {"cp", "J/(kg K)", p.Cp, leastCp}, {"density", "kg/m³", p.Density, leastDensity}} {
+			if !(c.value >= c.least && c.value <= largest) {
+				faults = append(faults, fmt.Errorf("row %d: %s of %g %s; it must be from %g to %g", k+1, c.name, c.value, c.unit, c.least, largest))
 			}
 		}
 		if k > 0 && !(p.T > points[k-1].T) {
@@ -66,7 +72,7 @@ func checkPoints(points []Point) (faults []error) {
 	return faults
 }
 
-// checkEnthalpies makes sure that cp stays above zero between rows whose enthalpies are
+// checkEnthalpies makes sure that cp stays above the least between rows whose enthalpies are
 // given.
 func (o Options) checkEnthalpies(points []Point) (faults []error) {
 	h := o.Enthalpies
@@ -79,6 +85,7 @@ func (o Options) checkEnthalpies(points []Point) (faults []error) {
 	for k := 1; k < len(points); k++ {
 		a, b := points[k-1], points[k]
 		cp := parabolas([]float64{a.T, b.T}, []float64{a.Cp, b.Cp}, h[k-1:k+1])[0]
+		cp[0] -= leastCp * (1 - 1e-12) // a row may have it
 		if _, ok := above(cp[:], 0, b.T-a.T); !ok || !(h[k]-h[k-1] <= largest*(b.T-a.T)) {
 			faults = append(faults, fmt.Errorf("row %d: enthalpies of %g and %g J/kg are not those of a cp of %g and %g J/(kg K) at %g and %g K", k+1, h[k-1], h[k], a.Cp, b.Cp, a.T, b.T))
 		}

@@ -18,8 +18,8 @@ type Options struct {
 	// both, and so must a polynomial: they say how far it may be taken. Zero means the
 	// first and the last row.
 	MinT, MaxT float64
-	// MaxP in Pa is the highest absolute pressure; zero means 2.5 MPa, for a gas twice its
-	// Pressure.
+	// MaxP in Pa is the highest absolute pressure, at most 1e9; zero means 2.5 MPa, for a
+	// gas twice its Pressure.
 	MaxP float64
 	// Freezing and Boiling in K end the phase at either side: freezing and boiling point of
 	// a liquid at the pressure of its circuit, dew point (Freezing) of a gas, melting point
@@ -46,6 +46,7 @@ const (
 	defaultUncertainty = 0.01
 	maxUncertainty     = 0.2
 	maxMolarMass       = 1.0 // kg/mol
+	largestP           = 1e9 // Pa
 )
 
 func (o Options) withDefaults() Options {
@@ -88,8 +89,8 @@ func (o Options) check() (faults []error) {
 	if o.Phase > thermo.Solid {
 		refuse("phase %v is unknown", o.Phase)
 	}
-	if !positive(o.MaxP) {
-		refuse("highest pressure of %g Pa; it must be finite and above zero", o.MaxP)
+	if !(o.MaxP > 0 && o.MaxP <= largestP) {
+		refuse("highest pressure of %g Pa; it must be above zero and at most %g", o.MaxP, largestP)
 	}
 	if (o.Phase == thermo.Gas) != (o.Pressure != 0) || o.Pressure != 0 && !positive(o.Pressure) {
 		refuse("pressure of the densities is %g Pa; a gas must have one above zero, a liquid or solid none", o.Pressure)
@@ -129,6 +130,8 @@ func (o Options) checkPhase() []error {
 	switch {
 	case !positive(o.MinT) || !positive(o.MaxT):
 		return []error{fmt.Errorf("range of temperature %g K to %g K; both must be finite and above zero", o.MinT, o.MaxT)}
+	case o.MinT < leastT || o.MaxT > largest:
+		return []error{fmt.Errorf("range of temperature %g K to %g K; it must lie within %g K to %g K", o.MinT, o.MaxT, leastT, largest)}
 	case !(o.MinT < o.MaxT):
 		return []error{fmt.Errorf("range of temperature %g K to %g K is empty", o.MinT, o.MaxT)}
 	case !(lo >= 0 && lo < o.MaxT && hi > o.MinT && lo < hi):

@@ -36,9 +36,10 @@ type polynomial struct {
 //
 //	Y(T) = c[0] + c[1] t + c[2] t² + ...,   t = T − 273.15 K
 //
-// opts must state the range in MinT and MaxT. Over the whole of it cp and density are above
-// zero and at most 1e6, and so is cv of a gas: not by samples, but proven by the
-// coefficients in Bernstein's basis, between which a polynomial stays. The error names
+// opts must state the range in MinT and MaxT. Over the whole of it cp and density lie
+// between the least and the greatest that [New] takes of a row, and cv of a gas is above
+// zero: not by samples, but proven by the coefficients in Bernstein's basis, between which
+// a polynomial stays. The error names
 // everything that is wrong, and a temperature where a polynomial is not as it must be.
 func Polynomial(name, source string, cp, density []float64, opts Options) (thermo.Fluid, error) {
 	opts = opts.withDefaults()
@@ -93,13 +94,19 @@ func (o Options) checkPolynomialRange() []error {
 
 // checkValues proves what Polynomial promises of the figures.
 func (o Options) checkValues(cp, density []float64) (faults []error) {
-	prove := func(c []float64, fault string) {
-		if t, ok := above(c, o.MinT-zeroC, o.MaxT-zeroC); !ok {
+	prove := func(c []float64, fault string) bool {
+		t, ok := above(c, o.MinT-zeroC, o.MaxT-zeroC)
+		if !ok {
 			faults = append(faults, fmt.Errorf("%s at %.6g K, within the range %g K to %g K", fault, zeroC+t, o.MinT, o.MaxT))
 		}
+		return ok
 	}
-	prove(cp, "cp is not above zero")
-	prove(density, "density is not above zero")
+	if prove(cp, "cp is not above zero") {
+		prove(beyond(cp, leastCp), fmt.Sprintf("cp is below %g J/(kg K)", leastCp))
+	}
+	if prove(density, "density is not above zero") {
+		prove(beyond(density, leastDensity), fmt.Sprintf("density is below %g kg/m³", leastDensity))
+	}
 	prove(below(cp), fmt.Sprintf("cp is above %g J/(kg K)", largest))
 	prove(below(density), fmt.Sprintf("density is above %g kg/m³", largest))
 	if len(faults) > 0 || o.Phase != thermo.Gas {
@@ -110,6 +117,13 @@ func (o Options) checkValues(cp, density []float64) (faults []error) {
 	}
 	prove(ideal(cp, density, zeroC, o.Pressure), "cp is no more than p/(ρT), so that cv is not above zero,")
 	return faults
+}
+
+// beyond is by how much the polynomial c is above the least value, a hair lower.
+func beyond(c []float64, least float64) []float64 {
+	out := slices.Clone(c)
+	out[0] -= least * (1 - 1e-12)
+	return out
 }
 
 // below is what remains from the polynomial c up to the largest value.

@@ -103,6 +103,10 @@ func TestPolynomialRefuses(t *testing.T) {
 		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 300, MaxT: 400, Enthalpies: []float64{1}}, "a polynomial has none"},
 		{"oil", "s", []float64{100, -1}, liquidDensity, liquidRange, "cp is not above zero at "},
 		{"oil", "s", liquidCp, []float64{100, -1}, liquidRange, "density is not above zero at "},
+		{"oil", "s", []float64{1 - 1e-9}, liquidDensity, liquidRange, "cp is below 1 J/(kg K) at "},
+		{"oil", "s", liquidCp, []float64{1e-4 - 1e-12}, liquidRange, "density is below 0.0001 kg/m³ at "},
+		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 0.999, MaxT: 300}, "range of temperature 0.999 K to 300 K; it must lie within 1 K to 1e+06 K"},
+		{"oil", "s", liquidCp, liquidDensity, Options{MinT: 300, MaxT: 1.1e6}, "it must lie within 1 K to 1e+06 K"},
 		{"oil", "s", []float64{2e6}, liquidDensity, liquidRange, "cp is above 1e+06 J/(kg K) at "},
 		{"oil", "s", liquidCp, []float64{1e300, 1e300, 1e300}, liquidRange, "density is above 1e+06 kg/m³ at "},
 		// A dip below zero over a tenth of a kelvin, which a coarse grid steps over: (t −

@@ -14,7 +14,11 @@
 //
 //	h(T, p) = ∫ cp dT + (p − 101325 Pa) · (v − T dv/dT),
 //
-// the parenthesis taken in the middle of the range. A gas is tabulated at one pressure; its
+// the parenthesis taken in the middle of the range in which it may be under its highest
+// pressure. Towards the ends the true term has another size, of a hot organic liquid even
+// another sign: thermo.PressureLaw tells by how much (of the heat-transfer liquids of
+// package oil up to 1 kJ/kg per MPa), and cp, which falls with pressure for the same
+// reason, has it in its uncertainty. A gas is tabulated at one pressure; its
 // density is scaled to others in proportion and cp − cv = p/(ρT), as for an ideal gas.
 //
 // A liquid boils where its user says so, or by the vapour pressures of its rows.

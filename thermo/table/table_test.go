@@ -238,7 +238,13 @@ func TestNewRefuses(t *testing.T) {
 		{"oil", "s", oil, Options{CpUncertainty: -0.01}, "uncertainty of cp is -0.01"},
 		{"oil", "s", oil, Options{DensityUncertainty: 3}, "uncertainty of density is 3"},
 		{"oil", "s", oil, Options{MolarMass: 29}, "molar mass of 29 kg/mol"},
-		{"oil", "s", bad(0, Point{T: 300, Cp: 2e6, Density: 900}), Options{}, "row 1: cp of 2e+06 J/(kg K); it must be above zero and at most 1e+06"},
+		{"oil", "s", bad(0, Point{T: 300, Cp: 2e6, Density: 900}), Options{}, "row 1: cp of 2e+06 J/(kg K); it must be from 1 to 1e+06"},
+		{"oil", "s", bad(0, Point{T: 0.999, Cp: 2000, Density: 900}), Options{}, "row 1: temperature of 0.999 K; it must be from 1 to 1e+06"},
+		{"oil", "s", bad(0, Point{T: 300, Cp: 0.999, Density: 900}), Options{}, "row 1: cp of 0.999 J/(kg K); it must be from 1 to 1e+06"},
+		{"oil", "s", bad(0, Point{T: 300, Cp: 2000, Density: 9.99e-5}), Options{}, "row 1: density of 9.99e-05 kg/m³; it must be from 0.0001 to 1e+06"},
+		{"oil", "s", oil, Options{MaxP: 1.001e9}, "highest pressure of 1.001e+09 Pa; it must be above zero and at most 1e+09"},
+		{"oil", "s", air(), Options{Phase: thermo.Gas, Pressure: 0.6e9}, "highest pressure of 1.2e+09 Pa"},
+		{"oil", "s", oil[:1], Options{MinT: 0.5, MaxT: 400}, "it must lie within 1 K to 1e+06 K"},
 		{"oil", "s", vapours(0, 10, 0), Options{}, "row 3: no vapour pressure, though row 2 has one"},
 		{"oil", "s", vapours(0, 10, 10), Options{}, "row 3: vapour pressure of 10 Pa does not rise above the 10 Pa before it"},
 		{"oil", "s", vapours(0, 10, 10*(1+1e-12)), Options{}, "row 3: vapour pressure of 10.00000000001 Pa does not rise"},
@@ -296,5 +302,39 @@ func TestRowsAreCopied(t *testing.T) {
 	points[0] = Point{}
 	if after, _ := f.At(340, 3e5); after != before {
 		t.Errorf("changed from %+v to %+v", before, after)
+	}
+}
+
+// The least and the largest that is accepted has sound properties.
+func TestExtremesAreSound(t *testing.T) {
+	for _, p := range []Point{{T: 1, Cp: 1, Density: 1e-4}, {T: 1, Cp: 1e6, Density: 1e6}} {
+		q := p
+		q.T = 1e6
+		sound(t, mustNew(t, []Point{p, q}, Options{MaxP: 1e9}))
+	}
+	sound(t, mustPolynomial(t, []float64{1}, []float64{1e-4}, Options{MinT: 1, MaxT: 1e6, MaxP: 1e9}))
+}
+
+// Stated uncertainties hold at one atmosphere; under pressure what an incompressible liquid
+// leaves out of cp comes beside. By hand for rows on the straight line 900 − 0.8 (T − 300
+// K): v − T dv/dT is (1 − 300·0.8/900)/900 at 300 K and (1 −
+// 450·0.8/780)/780 at 450 K, in m³/kg.
+func TestUncertainty(t *testing.T) {
+	f := mustNew(t, oil, Options{CpUncertainty: 0.02, DensityUncertainty: 0.03})
+	cp, density := f.Uncertainty(300, 101325)
+	if cp != 0.02 || density != 0.03 {
+		t.Errorf("%g, %g; want 0.02, 0.03", cp, density)
+	}
+	term := func(T, rho float64) float64 { return (1 - T*0.8/rho) / rho }
+	s, err := f.At(375, 101325)
+	if err != nil {
+		t.Fatal(err)
+	}
+	want := math.Hypot(0.02, 2e6*(term(300, 900)-term(450, 780))/150/s.Cp/math.Sqrt(3))
+	if cp, density = f.Uncertainty(300, 101325+2e6); math.Abs(cp-want) > 1e-12 || density != 0.03 {
+		t.Errorf("2 MPa above: %g, %g; want %g, 0.03", cp, density, want)
+	}
+	if cp, density = mustNew(t, air(), Options{Phase: thermo.Gas, Pressure: 101325}).Uncertainty(300, 2e5); cp != 0.01 || density != 0.01 {
+		t.Errorf("gas: %g, %g; want 0.01, 0.01", cp, density)
 	}
 }
