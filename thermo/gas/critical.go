@@ -61,5 +61,17 @@ func (c criticalPoint) vapourTemperature(p float64) float64 {
 	return c.T / (1 - min(x, 0.5))
 }
 
+// vapourLine is ln(x/ps) of a component as a straight line in y = 1/T, see
+// [criticalPoint.vapourTemperature]: start + slope·y.
+type vapourLine struct{ start, slope float64 }
+
+func (c criticalPoint) line(share float64) vapourLine {
+	k := 7.0 / 3 * (1 + c.omega) * math.Ln10
+	return vapourLine{math.Log(share/c.p) - k, k * c.T}
+}
+
+// ratio is x·p/ps.
+func (l vapourLine) ratio(logP, y float64) float64 { return math.Exp(logP + l.start + l.slope*y) }
+
 // covolume b of Peng and Robinson in m³/mol.
 func (c criticalPoint) covolume() float64 { return omegaB * thermo.R * c.T / c.p }

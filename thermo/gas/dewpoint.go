@@ -12,12 +12,14 @@ type vapour struct {
 	formula string
 	share   float64 // mole fraction
 	point   criticalPoint
+	mixes   bool
+	line    vapourLine
 }
 
 // vapours of a mixture, with the dew points up to some pressures, so that most states need none.
 type vapours struct {
 	all  []vapour
-	safe [3]struct{ p, T float64 } // no dew point lies above T up to p
+	safe [5]struct{ p, T float64 } // no dew point lies above T up to p
 }
 
 // vapoursOf are the parts that fall out of the gas above 200 K at some pressure up to
@@ -25,14 +27,15 @@ type vapours struct {
 func vapoursOf(parts []component, maxP float64) vapours {
 	var vs vapours
 	for _, c := range parts {
-		v := vapour{c.formula, c.share, critical[c.formula]}
+		v := vapour{formula: c.formula, share: c.share, point: critical[c.formula], mixes: !polar[c.formula]}
+		v.line = v.point.line(v.share)
 		if v.dewPoint(maxP) > minT {
 			vs.all = append(vs.all, v)
 		}
 	}
-	for k, p := range [...]float64{min(120e3, maxP), min(1e6, maxP), maxP} {
-		vs.safe[k].p = p
-		vs.safe[k].T, _ = vs.dewPoint(p)
+	for k, p := range [...]float64{120e3, 500e3, 2e6, 5e6, maxP} {
+		vs.safe[k].p = min(p, maxP)
+		vs.safe[k].T, _ = vs.dewPoint(vs.safe[k].p)
 	}
 	return vs
 }
@@ -47,21 +50,84 @@ func (vs *vapours) clear(T, p float64) bool {
 	return false
 }
 
-// dewPoint returns the highest dew point at p in Pa and whose it is, 0 where there is none.
+// dry tells that T in K lies above the dew point at p in Pa, but for a hair; in less time than it takes to find
+// that.
+func (vs *vapours) dry(T, p float64) bool {
+	y, logP, sum := 1/T, math.Log(p), 0.0
+	for k := range vs.all {
+		v := &vs.all[k]
+		if !v.mixes || v.formula == "CO2" {
+			if T < v.dewPoint(p) {
+				return false
+			}
+		}
+		if v.mixes {
+			sum += v.line.ratio(logP, y)
+		}
+	}
+	return sum < 1-1e-12
+}
+
+// dewPoint returns the highest dew point at p in Pa and whose it is, 0 where there is none: of each
+// component by itself, and of those that mix with one another, together.
 func (vs *vapours) dewPoint(p float64) (T float64, formula string) {
 	if !(p > 0) {
 		return 0, ""
 	}
+	highest := 0.0 // of those that mix
 	for k := range vs.all {
-		if d := vs.all[k].dewPoint(p); d > T {
-			T, formula = d, vs.all[k].formula
+		v := &vs.all[k]
+		d := v.dewPoint(p)
+		if d > T {
+			T, formula = d, v.formula
 		}
+		if v.mixes {
+			highest = max(highest, v.point.vapourTemperature(v.share*p))
+		}
+	}
+	if d, first := vs.together(p, highest); d > T {
+		return d, first
 	}
 	return T, formula
 }
 
+// together is the temperature in K at which a liquid of all components that mix begins,
+//
+//	Σ x p/ps(T) = 1
+//
+// by Raoult, with the vapour pressures ps of the straight lines in 1/T, which run on above the critical points; and
+// the component of which most is in that liquid. start in K is the highest of the components' own dew points. The logarithm of the
+// sum is convex in 1/T, so Newton's steps from there fall one way to the root.
+func (vs *vapours) together(p, start float64) (T float64, formula string) {
+	if start == 0 {
+		return 0, ""
+	}
+	y, logP := 1/start, math.Log(p)
+	for range 50 {
+		var sum, slope, most float64
+		for k := range vs.all {
+			v := &vs.all[k]
+			if !v.mixes {
+				continue
+			}
+			liquid := v.line.ratio(logP, y)
+			sum += liquid
+			slope += liquid * v.line.slope
+			if liquid > most {
+				most, formula = liquid, v.formula
+			}
+		}
+		next := y - math.Log(sum)*sum/slope
+		if !(next < y*(1-1e-15)) {
+			break
+		}
+		y = next
+	}
+	return 1 / y, formula
+}
+
 // dewPoint is the temperature in K at which the component falls out of a mixture
-// at the absolute pressure p in Pa, as if its partial pressure were that of the
+// at the absolute pressure p in Pa by itself, as if its partial pressure were that of the
 // pure substance: Raoult and Dalton, without dissolved or real gas.
 func (v *vapour) dewPoint(p float64) float64 {
 	part := v.share * p

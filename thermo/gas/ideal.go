@@ -124,7 +124,7 @@ func (m *mixture) At(T, p float64) (thermo.Properties, error) {
 	if err := m.bounds.Check(m.name, T, p, "range of the ideal gas"); err != nil {
 		return thermo.Properties{}, err
 	}
-	if !m.vapours.clear(T, p) {
+	if !m.vapours.clear(T, p) && !m.vapours.dry(T, p) {
 		if d, formula := m.vapours.dewPoint(p); T < d {
 			return thermo.Properties{}, tooCold(m.name, T, d, dewOf(formula))
 		}

@@ -284,7 +284,7 @@ func TestPairing(t *testing.T) {
 	}
 }
 
-// What is passed as clear of every dew point is so.
+// What is passed as clear of every dew point is so, and dry is what lies above it.
 func TestClear(t *testing.T) {
 	met := 0
 	for name, fractions := range everyGas() {
@@ -296,6 +296,9 @@ func TestClear(t *testing.T) {
 			}
 			met++
 			for _, T := range []float64{dew - 1, dew - 1e-6, dew * 0.9} {
+				if vs.dry(T, p) || !vs.dry(2*dew-T, p) {
+					t.Errorf("%s: %g K is dry %v at %g Pa, %g K dry %v, the dew point of %s is %g K", name, T, vs.dry(T, p), p, 2*dew-T, vs.dry(2*dew-T, p), formula, dew)
+				}
 				if vs.clear(T, p) {
 					t.Errorf("%s: %g K is clear at %g Pa, the dew point of %s is %g K", name, T, p, formula, dew)
 				}

@@ -55,7 +55,7 @@ func TestOneFluidCritical(t *testing.T) {
 
 // Every state of a reference equation that lies in the range of trust lies within twice the
 // uncertainty as well. Above 1.3 Tc density keeps to 2.6 % and cp to 2.04 % (ethane at
-// 400 K and 100 bar), below to 0.7 % and 2.6 %.
+// 400 K and 100 bar), below to 1.9 % and 6.6 %.
 func TestTrustOfPengRobinson(t *testing.T) {
 	type worst struct{ cp, density, ratio float64 }
 	inside, refused := map[bool]*worst{true: {}, false: {}}, 0
@@ -76,7 +76,7 @@ func TestTrustOfPengRobinson(t *testing.T) {
 				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r["eos"])
 		}
 	}
-	for side, limit := range map[bool]worst{true: {cp: 0.0204, density: 0.0261}, false: {cp: 0.026, density: 0.007}} {
+	for side, limit := range map[bool]worst{true: {cp: 0.0204, density: 0.0261}, false: {cp: 0.066, density: 0.019}} {
 		w := inside[side]
 		t.Logf("above 1.3 Tc %v: cp within %.2f %%, density within %.2f %%, at most %.2f standard uncertainties", side, 100*w.cp, 100*w.density, w.ratio)
 		if w.cp > limit.cp || w.density > limit.density || w.cp == 0 {
@@ -84,8 +84,8 @@ func TestTrustOfPengRobinson(t *testing.T) {
 		}
 	}
 	t.Logf("%d states refused", refused)
-	if refused > 12 {
-		t.Errorf("%d of the states are refused, want 12 or fewer", refused)
+	if refused > 5 {
+		t.Errorf("%d of the states are refused, want 5 or fewer", refused)
 	}
 }
 
