@@ -9,10 +9,12 @@ import (
 )
 
 // Combustion is the air that a fuel burns with: dry air of the composition of [DryAir] and its
-// humidity. Either the excess or the oxygen left is given.
+// humidity. One of excess and oxygen left is given: of the dry gas, as an analyser behind a cooler has it, or of the wet
+// one, as a zirconia probe in the duct has it.
 type Combustion struct {
 	ExcessAir     float64 // air beyond the stoichiometric, as a fraction of it: 0.2 for 20 %
-	DryO2         float64 // mole fraction of O2 in the dry flue gas; 0: ExcessAir holds
+	DryO2         float64 // mole fraction of O2 in the dry flue gas; 0: not given
+	WetO2         float64 // mole fraction of O2 in the flue gas as it is; 0: not given
 	HumidityRatio float64 // kg of vapour per kg of dry air
 }
 
@@ -44,8 +46,12 @@ func FlueGas(fuel Fuel, c Combustion) (Flue, error) {
 	}
 	air, _ := lookup(dryAir)
 	least := b.need / oxygenOfAir
-	moles := c.air(b, least)
-	b.breathe(air, moles, c.HumidityRatio)
+	vapour := air.molarMass() * c.HumidityRatio / (2*massH + massO) // mol/mol
+	moles := c.air(b, least, vapour)
+	if !(moles >= least) {
+		return Flue{}, fmt.Errorf("no excess of air leaves oxygen of %g in the wet flue gas when the air brings %g kg/kg of vapour", c.WetO2, c.HumidityRatio)
+	}
+	b.breathe(air, moles, vapour)
 
 	f := Flue{
 		DryAir:            moles * air.molarMass() / b.mass,
@@ -53,8 +59,16 @@ func FlueGas(fuel Fuel, c Combustion) (Flue, error) {
 		ExcessAir:         moles/least - 1,
 	}
 	f.Fractions, f.PerFuel = b.shares()
-	f.Fluid, err = New(f.Fractions, Best)
+	gas, err := New(f.Fractions, Best)
+	f.Fluid = burntGas{gas}
 	return f, err
+}
+
+// burntGas tells its reader what it is taken to be.
+type burntGas struct{ thermo.Fluid }
+
+func (b burntGas) Source() string {
+	return "products of a complete combustion (all carbon to CO2, hydrogen to H2O, sulfur to SO2); " + b.Fluid.Source()
 }
 
 // Dry returns the mole fractions without the water vapour, as a gas analyser sees them.
@@ -76,8 +90,14 @@ func (c Combustion) check() error {
 		return fmt.Errorf("excess air is %g; it lies from 0 to 100 times the air needed", c.ExcessAir)
 	case !(c.DryO2 >= 0 && c.DryO2 < 0.205):
 		return fmt.Errorf("oxygen in the dry flue gas is %g; its mole fraction lies from 0 to below 0.205", c.DryO2)
+	case !(c.WetO2 >= 0 && c.WetO2 < 0.205):
+		return fmt.Errorf("oxygen in the wet flue gas is %g; its mole fraction lies from 0 to below 0.205", c.WetO2)
 	case c.ExcessAir > 0 && c.DryO2 > 0:
 		return fmt.Errorf("excess air of %g and oxygen of %g are both given; give one", c.ExcessAir, c.DryO2)
+	case c.ExcessAir > 0 && c.WetO2 > 0:
+		return fmt.Errorf("excess air of %g and oxygen in the wet gas of %g are both given; give one", c.ExcessAir, c.WetO2)
+	case c.DryO2 > 0 && c.WetO2 > 0:
+		return fmt.Errorf("oxygen of %g dry and %g wet are both given; give one", c.DryO2, c.WetO2)
 	case !(c.HumidityRatio >= 0 && c.HumidityRatio <= 0.5):
 		return fmt.Errorf("humidity ratio of the combustion air is %g kg/kg; it lies from 0 to 0.5", c.HumidityRatio)
 	}
@@ -88,9 +108,16 @@ func (c Combustion) check() error {
 // burnt is b.dry without the air,
 //
 //	y · (dry + L − need) = x·L − need
-func (c Combustion) air(b *burnt, least float64) float64 {
+//
+// and in the wet gas the same with all products and the air with its vapour, v moles a mole,
+//
+//	y · (dry + H2O + L·(1 + v) − need) = x·L − need
+func (c Combustion) air(b *burnt, least, vapour float64) float64 {
 	if y := c.DryO2; y > 0 {
 		return (b.need + y*(b.dry()-b.need)) / (oxygenOfAir - y)
+	}
+	if y := c.WetO2; y > 0 {
+		return (b.need + y*(b.dry()+b.moles["H2O"]-b.need)) / (oxygenOfAir - y*(1+vapour))
 	}
 	return least * (1 + c.ExcessAir)
 }
@@ -106,13 +133,13 @@ func (b *burnt) dry() float64 {
 	return sum
 }
 
-// breathe adds moles of dry air, with its humidity, less the oxygen burnt.
-func (b *burnt) breathe(air *ingredient, moles, humidityRatio float64) {
+// breathe adds moles of dry air, each with moles of vapour, less the oxygen burnt.
+func (b *burnt) breathe(air *ingredient, moles, vapour float64) {
 	for _, p := range air.parts {
 		b.moles[p.formula] += moles * p.share
 	}
 	b.moles["O2"] = max(0, b.moles["O2"]-b.need)
-	b.moles["H2O"] += moles * air.molarMass() * humidityRatio / (2*massH + massO)
+	b.moles["H2O"] += moles * vapour
 }
 
 // shares are the mole fractions, and the kg of all per kg of fuel.

@@ -125,6 +125,12 @@ func TestFlueBalance(t *testing.T) {
 		if m := 1 - e.Ash + f.DryAir*(1+c.HumidityRatio); math.Abs(f.PerFuel/m-1) > 1e-7 || f.DryAir < f.StoichiometricAir {
 			t.Fatalf("%+v, %+v: %.10g kg out, %.10g kg in", e, c, f.PerFuel, m)
 		}
+		if x := f.Fractions["O2"]; x > 1e-3 {
+			wet := mustBurn(t, Fuel{Mass: e}, Combustion{WetO2: x, HumidityRatio: c.HumidityRatio})
+			if math.Abs(wet.ExcessAir-c.ExcessAir) > 1e-11 {
+				t.Fatalf("%+v: excess air %.15g, by the oxygen of the wet gas %.15g", e, c.ExcessAir, wet.ExcessAir)
+			}
+		}
 		back := mustBurn(t, Fuel{Mass: e}, Combustion{DryO2: f.Dry()["O2"], HumidityRatio: c.HumidityRatio})
 		if f.Dry()["O2"] > 1e-3 && math.Abs(back.ExcessAir-c.ExcessAir) > 1e-11 {
 			t.Fatalf("%+v: excess air %.15g, by the oxygen left %.15g", e, c.ExcessAir, back.ExcessAir)
@@ -133,7 +139,7 @@ func TestFlueBalance(t *testing.T) {
 }
 
 // A flue gas of natural gas burnt with just enough air has its water dew point near 59 °C
-// (common practice, no source); methane with 3 % O2 left over has 16.6 % excess air: 3/(20.95 − 3)
+// (common practice, no source); methane with 3 % O2 left over has 15.0 % excess air: 3/(20.95 − 3)
 // times the ratio of dry flue gas to air, 0.895.
 func TestFlueOfMethane(t *testing.T) {
 	f := mustBurn(t, gasFuel("methane"), Combustion{})
@@ -143,6 +149,9 @@ func TestFlueOfMethane(t *testing.T) {
 	f = mustBurn(t, gasFuel("methane"), Combustion{DryO2: 0.03})
 	if want := 0.03 / (0.209476 - 0.03) * 0.895; math.Abs(f.ExcessAir-want) > 0.001 || math.Abs(f.Dry()["O2"]-0.03) > 1e-15 {
 		t.Errorf("excess air %.4f, want %.4f; O2 %g", f.ExcessAir, want, f.Dry()["O2"])
+	}
+	if !strings.Contains(f.Fluid.Source(), "complete combustion") {
+		t.Errorf("source %q", f.Fluid.Source())
 	}
 	if f.Fractions["CO"] != 0 || math.Abs(f.PerFuel-1-f.DryAir) > 1e-6 {
 		t.Errorf("%+v", f)
@@ -179,6 +188,11 @@ func TestFlueGasRefuses(t *testing.T) {
 		{gasFuel("CH4"), Combustion{ExcessAir: math.NaN()}, "excess air is NaN"},
 		{gasFuel("CH4"), Combustion{DryO2: 3}, "oxygen in the dry flue gas is 3"},
 		{gasFuel("CH4"), Combustion{DryO2: 0.03, ExcessAir: 0.1}, "both given"},
+		{gasFuel("CH4"), Combustion{WetO2: 0.21}, "oxygen in the wet flue gas is 0.21"},
+		{gasFuel("CH4"), Combustion{WetO2: math.NaN()}, "oxygen in the wet flue gas is NaN"},
+		{gasFuel("CH4"), Combustion{WetO2: 0.03, ExcessAir: 0.1}, "both given"},
+		{gasFuel("CH4"), Combustion{WetO2: 0.03, DryO2: 0.03}, "both given"},
+		{gasFuel("CH4"), Combustion{WetO2: 0.19, HumidityRatio: 0.4}, "no excess of air leaves oxygen of 0.19"},
 		{gasFuel("CH4"), Combustion{HumidityRatio: 8}, "humidity ratio of the combustion air is 8 kg/kg"},
 	} {
 		if f, err := FlueGas(tt.fuel, tt.c); err == nil || !strings.Contains(err.Error(), tt.want) {

@@ -15,7 +15,7 @@
 // lies within 2.0 % and density within 2.6 %; in the whole of that range, to 100 bar and 200 K, within 4.5 % and
 // 4.1 %; below, down to the dew point or, at higher pressures, to a limit that rises with pressure, within 7.3 % and
 // 4.4 %, but carbon dioxide, water vapour and ammonia near their dew points 14 % in cp. Moist air under pressure:
-// cp 9.4 % low of IAPWS G8-10 at 134.7 °C, 440 kPa and a humidity ratio of 1.25, where the uncertainty is
+// cp 9.3 % low of IAPWS G8-10 at 134.7 °C, 440 kPa and a humidity ratio of 1.25, where the uncertainty is
 // 6 %.
 //
 // [Reference] takes the reference equation of state of one gas, or of dry air, from package
