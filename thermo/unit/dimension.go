@@ -25,6 +25,7 @@ const (
 	Ratio                                      // a fraction: 8 % is 0.08
 	Duration                                   // s
 	Size                                       // bytes of storage
+	MolarMass                                  // kg/mol
 )
 
 var dimensions = [...]struct{ name, si string }{
@@ -44,6 +45,7 @@ var dimensions = [...]struct{ name, si string }{
 	Ratio:                 {"ratio", "1"},
 	Duration:              {"duration", "s"},
 	Size:                  {"storage size", "B"},
+	MolarMass:             {"molar mass", "kg/mol"},
 }
 
 func (d Dimension) String() string {

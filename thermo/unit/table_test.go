@@ -87,6 +87,7 @@ func TestPrintedFactors(t *testing.T) {
 		{"lb/ft3", 1.601846e1, 3e-7},
 		{"inHg", 3.386389e3, 2e-7},
 		{"ton of refrigeration", 3.516853e3, 1e-7},
+		{"hL", 0.1, 1e-15}, {"hL/h", 0.1 / 3600, 1e-15}, // SI Brochure: 1 L = 1e-3 m³
 	} {
 		u, err := Lookup(tt.symbol)
 		if err != nil || math.Abs(u.Factor/tt.want-1) > tt.digits {
@@ -104,6 +105,18 @@ func TestEveryUnitIsFoundUnderItsNames(t *testing.T) {
 			if u, err := LookupAs(name, r.Dimension); err != nil || u != r.Unit {
 				t.Errorf("LookupAs(%q, %v) = %q, %v; want %q", name, r.Dimension, u.Symbol, err, r.Symbol)
 			}
+		}
+	}
+}
+
+func TestEveryDimensionHasItsSIUnit(t *testing.T) {
+	for d := Dimension(1); d.valid(); d++ {
+		found := d == Ratio // whose SI unit is 1
+		for _, u := range Named(d) {
+			found = found || u.Factor == 1 && u.Offset == 0
+		}
+		if !found {
+			t.Errorf("%v has no unit of factor 1", d)
 		}
 	}
 }

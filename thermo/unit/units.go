@@ -6,7 +6,7 @@ import "slices"
 // stands before TemperatureDifference: [Lookup] takes the first.
 var table = slices.Concat(
 	temperatures, differences, pressures, massFlows, volumeFlows, molarFlows, masses, volumes,
-	energies, powers, specificHeats, specificEnthalpies, densities, ratios, durations, sizes,
+	energies, powers, specificHeats, specificEnthalpies, densities, ratios, durations, sizes, molarMasses,
 )
 
 var temperatures = rows(Temperature,
@@ -64,6 +64,7 @@ var volumeFlows = rows(VolumeFlow,
 	is("m3/s", 1, si),
 	is("L/h", 1e-3/hour, nist, "l/h"),
 	is("m3/min", 1/minute, nist),
+	is("hL/h", 0.1/hour, nist, "hl/h").noting("the hectolitre of breweries, 0.1 m3"),
 	is("m3/d", 1/day, nist),
 	is("gpm", galUS/minute, nist, "gpm (US)", "US gpm", "usgpm", "GPM", "gal/min").noting("US gallons of 231 in3; a UK gallon is 20 % larger, write gpm (UK)"),
 	is("gpm (UK)", galUK/minute, nist, "imp gpm", "imp. gpm", "Imp gpm", "UK gpm", "gpm (imp)"),
@@ -97,6 +98,7 @@ var masses = rows(Mass,
 var volumes = rows(Volume,
 	is("m3", 1, si),
 	is("L", 1e-3, nist, "l", "litre", "liter"),
+	is("hL", 0.1, nist, "hl", "hectolitre", "hectoliter"),
 	is("gal", galUS, nist, "gal (US)", "US gal").noting("US gallon of 231 in3"),
 	is("gal (UK)", galUK, nist, "imp gal", "UK gal"),
 	is("ft3", cubicFt, nist),
@@ -196,4 +198,11 @@ var sizes = rows(Size,
 	is("kB", 1e3, inSize),
 	is("MB", 1e6, inSize),
 	is("GB", 1e9, inSize),
+)
+
+var molarMasses = rows(MolarMass,
+	is("g/mol", 1e-3, si),
+	is("kg/kmol", 1e-3, si),
+	is("kg/mol", 1, si),
+	is("lb/lbmol", 1e-3, "a pound-mole is as many pounds as a gram-mole is grams", "lb/lb-mol"),
 )
