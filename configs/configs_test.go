@@ -127,7 +127,7 @@ func designState(l site.HeatLoad) (loads.Stream, loads.State) {
 func TestExamplesShowTheKeys(t *testing.T) {
 	apart := []string{
 		"broker.server_name", "broker.password_env",
-		"fluids.*.table.pressure", "fluids.*.table.freezing", "fluids.*.table.range",
+		"fluids.*.table.pressure", "fluids.*.table.freezing", "fluids.*.table.range", "fluids.*.table.molar_mass", "fluids.*.polynomial.molar_mass",
 		"fluids.*.polynomial.pressure", "fluids.*.polynomial.max_pressure", "fluids.*.polynomial.freezing", "fluids.*.polynomial.boiling",
 		"loads.*.stream.dew_point", "loads.*.stream.wet_bulb", "loads.*.stream.humidity_ratio",
 		"fluids.*.moist air.dew point", "fluids.*.moist air.wet bulb", "fluids.*.moist air.humidity ratio", "fluids.*.moist air.pressure",

@@ -25,7 +25,7 @@ var keys = map[string][]string{
 }
 
 // described are the keys of a fluid by figures of its own, beside the figures.
-var described = []string{"source", "phase", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range"}
+var described = []string{"source", "phase", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range", "molar_mass"}
 
 // Keys lists the keys that each block of a site file may have: "broker",
 // "tags.*", "loads.*.stream" and so on, "" for the top. A star stands for a name

@@ -137,7 +137,7 @@ func FlowSuits(f thermo.Fluid, d unit.Dimension) error {
 	case f.Phase() != thermo.Gas:
 		return fmt.Errorf("a normal or standard volume flow is for gases, and %q is a %s", f.Name(), f.Phase())
 	case f.MolarMass() <= 0:
-		return fmt.Errorf("a normal or standard volume flow needs a molar mass, and %q has none; want a mass flow or volume flow", f.Name())
+		return fmt.Errorf("a normal or standard volume flow needs a molar mass, and %q has none; want a mass flow or volume flow, or the molar_mass of its declaration", f.Name())
 	}
 	return nil
 }

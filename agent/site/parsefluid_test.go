@@ -7,6 +7,8 @@ import (
 	"regexp"
 	"strings"
 	"testing"
+
+	"heatreeve/thermo/unit"
 )
 
 // The shares of the mixtures are worked by hand: 23.2 % of 31.999 g/mol beside 76.8 % of
@@ -27,6 +29,8 @@ func TestParseFluid(t *testing.T) {
 		{"{food: {water: 90 %, carbohydrate: 10 %}}", "food: {water: 90 %, carbohydrate: 10 %}"},
 		{"{seawater: 35 g/kg}", "seawater 35 g/kg"},
 		{"{petroleum: {density: 870 kg/m3}}", "petroleum 870 kg/m³"},
+		{"{petroleum: {density: 850 kg/m3, group: Diesel}}", "fuel oil 850 kg/m³"},
+		{"{petroleum: {density: 800 kg/m3, group: jet fuel}}", "jet-kerosene 800 kg/m³"},
 		{"{petroleum: {density: 0.96 kg/L, watson: 11.4, group: fuel oil}}", "fuel oil 960 kg/m³, Watson 11.4"},
 		{"{polynomial: {source: a sheet, phase: liquid, cp: [1880, 3.6], density: [881, -0.65], range: [20 °C, 300 °C]}}", "fluid"},
 		{"gas: {O2: 100 %}", "oxygen"},
@@ -49,6 +53,18 @@ func TestTableBoilsByItsVapourPressure(t *testing.T) {
 	}
 	if _, hi := f.Span(90e3); math.Abs(hi-473.15) > 1e-6 {
 		t.Errorf("boils at %g K under 90 kPa, want 473.15 K", hi)
+	}
+}
+
+// A gas by figures of its own can be metered as a normal volume where its molar mass is
+// told.
+func TestTableHasItsMolarMass(t *testing.T) {
+	f, err := ParseFluid("{table: {source: a sheet, phase: gas, pressure: 1 bar, molar_mass: 28.6 kg/kmol, points: [[0 °C, 1 kJ/(kg K), 1.2 kg/m3], [90 °C, 1 kJ/(kg K), 0.9 kg/m3]]}}")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if math.Abs(f.MolarMass()-0.0286) > 1e-15 || FlowSuits(f, unit.MolarFlow) != nil {
+		t.Errorf("molar mass %g kg/mol, metered by normal volume: %v", f.MolarMass(), FlowSuits(f, unit.MolarFlow))
 	}
 }
 

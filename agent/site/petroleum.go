@@ -14,7 +14,7 @@ func petroleum(_ *reader, d declaration) thermo.Fluid {
 	before := len(d.v.faults)
 	var group string
 	if v, ok := o.get("group"); ok {
-		group, _ = v.oneOf(oil.Groups()...)
+		group = productGroup(v)
 	}
 	var watson float64
 	if v, ok := o.get("watson"); ok {
@@ -26,6 +26,20 @@ func petroleum(_ *reader, d declaration) thermo.Fluid {
 	}
 	f, err := oil.Petroleum(density, watson, group)
 	return d.v.made(f, err)
+}
+
+// productGroup reads a group or another name of one, such as diesel. It is "" where
+// there is a fault.
+func productGroup(v value) string {
+	s, ok := v.text()
+	if !ok {
+		return ""
+	}
+	group, err := oil.Group(s)
+	if err != nil {
+		v.fault("%v", err)
+	}
+	return group
 }
 
 // density15 reads the density in kg/m³ at 15 °C, or what stands for it.

@@ -88,6 +88,9 @@ func (r *reader) described(o object) (source string, opts table.Options) {
 	if v, ok := o.get("boiling"); ok {
 		opts.Boiling = r.constant(v, unit.Temperature)
 	}
+	if v, ok := o.get("molar_mass"); ok {
+		opts.MolarMass, _ = v.within(1e-3, 0.999, "1 g/mol to 999 g/mol", unit.MolarMass)
+	}
 	if v, ok := o.get("range"); ok {
 		if lo, hi, ok := r.span(v, kelvin); ok {
 			opts.MinT, opts.MaxT = lo, hi
