@@ -3,8 +3,7 @@ package named
 import (
 	"slices"
 
-	"heatreeve/thermo"
-	"heatreeve/thermo/unit"
+	"heatreeve/thermo/oil"
 )
 
 // aside is a name of the trade for a fluid of the list. The numbers of refrigerants are
@@ -44,23 +43,25 @@ func refrigerantNumbers() (as []aside) {
 	return as
 }
 
-// products are petroleum liquids by their names of the trade, each with the group of
-// ASTM D1250 by which its density is corrected: with "" the one that has its density.
+// products are petroleum liquids by their names of the trade. Diesel and its like are
+// the distillate of their density: they lie on both sides of a limit of ASTM D1250.
 func products() (ws []*word) {
 	for _, p := range []struct{ name, sample, group string }{
 		{"diesel", "840 kg/m3", ""}, {"diesel oil", "840 kg/m3", ""}, {"diesel fuel", "840 kg/m3", ""}, {"gas oil", "845 kg/m3", ""}, {"marine gas oil", "855 kg/m3", ""},
 		{"heating oil", "845 kg/m3", ""}, {"light fuel oil", "845 kg/m3", ""},
-		{"petrol", "750 kg/m3", "gasoline"}, {"naphtha", "720 kg/m3", "gasoline"},
-		{"kerosene", "800 kg/m3", "jet-kerosene"}, {"kerosine", "800 kg/m3", "jet-kerosene"}, {"jet fuel", "800 kg/m3", "jet-kerosene"},
-		{"heavy fuel oil", "960 kg/m3", "fuel oil"}, {"residual fuel oil", "960 kg/m3", "fuel oil"}, {"HFO", "960 kg/m3", "fuel oil"}, {"bunker oil", "960 kg/m3", "fuel oil"},
-		{"crude", "870 kg/m3", "crude oil"},
-		{"lube oil", "880 kg/m3", "lubricating oil"}, {"lubricant", "880 kg/m3", "lubricating oil"}, {"hydraulic oil", "870 kg/m3", "lubricating oil"},
-		{"gear oil", "890 kg/m3", "lubricating oil"}, {"turbine oil", "870 kg/m3", "lubricating oil"}, {"engine oil", "880 kg/m3", "lubricating oil"},
+		{"HFO", "960 kg/m3", "fuel oil"}, {"heavy fuel oil", "960 kg/m3", "fuel oil"}, {"bunker oil", "960 kg/m3", "fuel oil"},
+		{"hydraulic oil", "870 kg/m3", "lubricating oil"}, {"gear oil", "890 kg/m3", "lubricating oil"}, {"turbine oil", "870 kg/m3", "lubricating oil"},
+		{"engine oil", "880 kg/m3", "lubricating oil"},
 	} {
-		ws = append(ws, &word{
-			name: p.name, aside: true, dimension: unit.Density, sample: p.sample,
-			make: func(s strength) (thermo.Fluid, error) { return s.petroleum(p.group) },
-		})
+		ws = append(ws, ofGroup(p.group, p.name, p.sample))
+	}
+	for _, group := range oil.Groups() {
+		for _, name := range oil.GroupAliases(group) {
+			ws = append(ws, ofGroup(group, name, densities[group]))
+		}
+	}
+	for _, w := range ws {
+		w.aside = true
 	}
 	return ws
 }

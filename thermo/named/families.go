@@ -1,7 +1,6 @@
 package named
 
 import (
-	"cmp"
 	"fmt"
 	"slices"
 	"sync"
@@ -113,21 +112,26 @@ func seas() []*word {
 
 func foods() []*word { return listed(food.Products(), food.Product) }
 
+// densities are those of the groups as they may be, at 15 °C.
+var densities = map[string]string{
+	"gasoline": "760 kg/m3", "transition": "780 kg/m3", "jet-kerosene": "800 kg/m3", "fuel oil": "900 kg/m3", "crude oil": "870 kg/m3", "lubricating oil": "880 kg/m3",
+}
+
 // petroleums are petroleum liquids by their density at 15 °C, of any distillate or of
 // one product group.
 func petroleums() []*word {
-	samples := map[string]string{
-		"": "870 kg/m3", "gasoline": "760 kg/m3", "transition": "780 kg/m3", "jet-kerosene": "800 kg/m3",
-		"fuel oil": "900 kg/m3", "crude oil": "870 kg/m3", "lubricating oil": "880 kg/m3",
-	}
-	var ws []*word
-	for _, group := range append([]string{""}, oil.Groups()...) {
-		ws = append(ws, &word{
-			name: cmp.Or(group, "petroleum"), dimension: unit.Density, sample: cmp.Or(samples[group], samples[""]),
-			make: func(s strength) (thermo.Fluid, error) { return s.petroleum(group) },
-		})
+	ws := []*word{ofGroup("", "petroleum", "870 kg/m3")}
+	for _, group := range oil.Groups() {
+		ws = append(ws, ofGroup(group, group, densities[group]))
 	}
 	return ws
+}
+
+func ofGroup(group, name, sample string) *word {
+	return &word{
+		name: name, dimension: unit.Density, sample: sample,
+		make: func(s strength) (thermo.Fluid, error) { return s.petroleum(group) },
+	}
 }
 
 func oils() []*word { return listed(oil.HeatTransferLiquids(), oil.HeatTransfer) }
