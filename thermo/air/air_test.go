@@ -128,6 +128,32 @@ func TestAgainstTable(t *testing.T) {
 	t.Logf("worst relative deviations: %s", got)
 }
 
+// The worst corners of the range, as the package comment tells them, against IAPWS G8-10 evaluated by python3-iapws 1.5:
+// the deviations are those, and √3 times the standard uncertainty covers them.
+func TestWorstCorners(t *testing.T) {
+	for _, tt := range []struct {
+		T, p, w     float64 // K, Pa
+		cp, density float64 // of the real mixture
+		dCp, dRho   float64 // %
+	}{
+		{369.15, 300e3, 0.25, 1223.347943, 2.535482208, -3.80, -0.44},
+		{223.15, 300e3, 0, 1012.483073, 4.705330026, -0.64, -0.46},
+		{468.15, 101325, 0.25, 1209.090296, 0.6724977714, -2.67, -0.03},
+		{343.15, 101325, 0.25, 1202.836572, 0.9191985027, -2.16, -0.22},
+	} {
+		f := mustMoist(t, tt.w)
+		s, err := f.At(tt.T, tt.p)
+		cp, density := f.Uncertainty(tt.T, tt.p)
+		dCp, dRho := s.Cp/tt.cp-1, s.Density/tt.density-1
+		if err != nil || math.Abs(100*dCp-tt.dCp) > 0.006 || math.Abs(100*dRho-tt.dRho) > 0.006 {
+			t.Errorf("%g K, %g Pa, W %g: cp %.3f %% and density %.3f %% off, want %g and %g; %v", tt.T, tt.p, tt.w, 100*dCp, 100*dRho, tt.dCp, tt.dRho, err)
+		}
+		if math.Abs(dCp) > math.Sqrt(3)*cp || math.Abs(dRho) > math.Sqrt(3)*density {
+			t.Errorf("%g K, %g Pa, W %g: uncertainties %.3f %% and %.3f %%", tt.T, tt.p, tt.w, 100*cp, 100*density)
+		}
+	}
+}
+
 // beyondDigits takes off what the last digit printed may be off by.
 func beyondDigits(d, half float64) float64 { return math.Max(math.Abs(d)-half, 0) }
 
