@@ -7,7 +7,7 @@ import "math"
 // density.
 //
 // References are the ASHRAE tables (glycols), the model of Laliberté (ethanol and
-// the salts) and IAPWS G4-01 (ammonia, down to -13 °C). Melinder's own tables are no
+// the salts) and IAPWS G4-01 (ammonia, down to -55 °C). Melinder's own tables are no
 // independent check: where there is nothing else, cp is taken to be within 2 % and
 // density within 0.5 %, which is what Melinder states (from memory), or within what
 // the tables show if that is more. Potassium carbonate has references of cp only at

@@ -21,6 +21,7 @@ var liquids = []solute{
 			{-1.389e-05, 1.847e-05, -0.0007138, 0, 0, 0},
 		},
 		freezing:  [6]float64{257.9, -80.8, -133.4, -72.93, 100.6, 11.4},
+		sooner:    ashraeEthyleneGlycol,
 		deviation: []deviation{{253.15, 3.23, 0.27}, {273.15, 2.05, 0.36}, {293.15, 1.45, 0.51}, {313.15, 1.15, 0.71}, {353.15, 0.9, 0.93}, {373.15, 0.55, 0.93}},
 	},
 	{
@@ -103,4 +104,11 @@ var liquids = []solute{
 		freezing:  [6]float64{260.15, -57.42, -91.19, -164.1, -240.8, -77.34},
 		deviation: []deviation{{263.15, 2, 0.5}, {293.15, 2, 0.5}},
 	},
+}
+
+// ashraeEthyleneGlycol are mass fractions and freezing points in K of the ASHRAE Handbook
+// Fundamentals, physical properties of secondary coolants (from memory).
+var ashraeEthyleneGlycol = [][2]float64{
+	{0, 273.15}, {0.05, 271.75}, {0.1, 269.95}, {0.15, 267.75}, {0.2, 265.35}, {0.25, 262.45}, {0.3, 259.05},
+	{0.35, 255.25}, {0.4, 250.85}, {0.45, 245.65}, {0.5, 239.35}, {0.55, 232.05}, {0.6, 224.85},
 }

@@ -3,11 +3,9 @@ package aqueous
 import (
 	"fmt"
 	"slices"
-	"strconv"
-	"strings"
 
 	"heatreeve/thermo"
-	"heatreeve/thermo/unit/near"
+	"heatreeve/thermo/roster"
 )
 
 var solutes = slices.Concat(liquids, salts)
@@ -51,7 +49,8 @@ const maxFractionUncertainty = 0.1
 // New returns the mixture of water and a mass fraction of solute (kg per kg of
 // mixture, from 0 to the solute's largest) that is known with the given standard
 // uncertainty, also as a mass fraction and at most 0.1. Salts count without
-// their water of crystallization. The error names an unknown solute and those
+// their water of crystallization; one whose strength may pass its eutectic, by twice the
+// uncertainty, is refused. The error names an unknown solute and those
 // like it, or the figure that is out of range.
 func New(solute string, massFraction, massFractionUncertainty float64) (thermo.Fluid, error) {
 	s, err := lookup(solute)
@@ -63,6 +62,9 @@ func New(solute string, massFraction, massFractionUncertainty float64) (thermo.F
 	}
 	if u := massFractionUncertainty; !(u >= 0 && u <= maxFractionUncertainty) {
 		return nil, fmt.Errorf("%s: uncertainty of the mass fraction is %g; it lies from 0 to %g", s.name, u, maxFractionUncertainty)
+	}
+	if strongest := massFraction + 2*massFractionUncertainty; s.eutectic && strongest > s.max*(1+1e-12) {
+		return nil, fmt.Errorf("%s of mass fraction %g may have up to %.4g by twice its uncertainty; %s, and beyond it salt falls out", s.name, massFraction, strongest, s.limit())
 	}
 	name := fmt.Sprintf("%s %.4g %%", s.name, 100*massFraction)
 	return s.mix(name, massFraction, massFractionUncertainty), nil
@@ -86,7 +88,7 @@ func (s *solute) mix(name string, x, u float64) *mixture {
 	if u > 0 {
 		m.freezes = "freezing point, were the mixture weaker by twice the uncertainty of its strength"
 	}
-	m.bounds = thermo.Bounds{MinT: s.freezesAt(max(0, x-2*u)), MaxT: s.maxT, MinP: m.boiling.minPressure(), MaxP: maxPressure}
+	m.bounds = thermo.Bounds{MinT: s.guard(max(0, x-2*u)), MaxT: s.maxT, MinP: m.boiling.minPressure(), MaxP: maxPressure}
 	m.boilsBelow = boilsBelow(m.boiling, s.maxT)
 	m.stiff = thermo.NewIncompressible((zeroC+s.maxT)/2, s.freezesAt(x), s.maxT, func(T float64) (rho, slope float64) {
 		return m.density.at(T - s.baseT), m.density.slope(T - s.baseT)
@@ -94,44 +96,21 @@ func (s *solute) mix(name string, x, u float64) *mixture {
 	return m
 }
 
+// also leads from every other name of a solute to its own.
+var also = func() map[string]string {
+	m := make(map[string]string)
+	for k := range solutes {
+		for _, alias := range solutes[k].aliases {
+			m[alias] = solutes[k].name
+		}
+	}
+	return m
+}()
+
 func lookup(name string) (*solute, error) {
-	for k := range solutes {
-		for _, n := range solutes[k].names() {
-			if plain(n) == plain(name) {
-				return &solutes[k], nil
-			}
-		}
+	k, err := roster.Find("solute", name, Solutes(), also)
+	if err != nil {
+		return nil, err
 	}
-	hint := ""
-	if guess := meant(name); len(guess) > 0 {
-		hint = ", did you mean " + strings.Join(guess, " or ")
-	}
-	return nil, fmt.Errorf("unknown solute %q%s; known solutes: %s", name, hint, strings.Join(Solutes(), ", "))
-}
-
-func (s *solute) names() []string { return append([]string{s.name}, s.aliases...) }
-
-// meant returns, quoted, the solutes of which the unknown name is a part, such as
-// "glycol", or else the name that it is nearest to.
-func meant(name string) []string {
-	var known, holding []string
-	for k := range solutes {
-		known = append(known, solutes[k].names()...)
-		if p := plain(name); len(p) > 3 && strings.Contains(plain(solutes[k].name), p) {
-			holding = append(holding, strconv.Quote(solutes[k].name))
-		}
-	}
-	if len(holding) > 0 {
-		return holding
-	}
-	guess := near.Names(name, known)
-	if len(guess) == 0 {
-		return nil
-	}
-	return []string{strconv.Quote(guess[0])}
-}
-
-// plain is a name without regard to case, spaces, hyphens and underscores.
-func plain(name string) string {
-	return strings.ToLower(strings.NewReplacer(" ", "", "-", "", "_", "").Replace(name))
+	return &solutes[k], nil
 }

@@ -29,8 +29,8 @@ func TestPolynomials(t *testing.T) {
 		if math.Abs(p.Density-r.fitDensity) > 6e-6*r.fitDensity+0.00006 || math.Abs(p.Cp-r.fitCp) > 6e-6*r.fitCp+0.0006 {
 			t.Errorf("%s %g K: density %.5f, cp %.4f; want %.4f, %.3f", m.Name(), r.T, p.Density, p.Cp, r.fitDensity, r.fitCp)
 		}
-		if math.Abs(m.bounds.MinT-r.fitFreezing) > 0.006 {
-			t.Errorf("%s: freezes at %.4f K, want %.2f", m.Name(), m.bounds.MinT, r.fitFreezing)
+		if s, err := lookup(r.solute); err != nil || math.Abs(s.freezesAt(r.x)-r.fitFreezing) > 0.006 {
+			t.Errorf("%s: freezes at %.4f K, %v, want %.2f", m.Name(), s.freezesAt(r.x), err, r.fitFreezing)
 		}
 	}
 	if count != 471 {

@@ -20,12 +20,28 @@ type solute struct {
 	density20    float64 // kg/m³, of the pure liquid at 20 °C; 0: comes by mass only
 	density, cp  [4][6]float64
 	freezing     [6]float64
+	sooner       [][2]float64 // mass fractions and K at which another source has it freeze sooner
 	deviation    []deviation
 	boils        func(massFraction float64) boiling
 }
 
 // freezesAt is the freezing point in K at mass fraction x.
 func (s *solute) freezesAt(x float64) float64 { return horner(s.freezing[:], x-s.baseX) }
+
+// guard is the freezing point in K at mass fraction x, moved up to that of the other source
+// where there is one: between its rows by as much as at the rows, in proportion.
+func (s *solute) guard(x float64) float64 {
+	T := s.freezesAt(x)
+	for k := 1; k < len(s.sooner); k++ {
+		a, b := s.sooner[k-1], s.sooner[k]
+		if x > b[0] && k < len(s.sooner)-1 {
+			continue
+		}
+		w := (x - a[0]) / (b[0] - a[0])
+		return T + (1-w)*(a[1]-s.freezesAt(a[0])) + w*(b[1]-s.freezesAt(b[0]))
+	}
+	return T
+}
 
 // at reduces a polynomial in temperature and concentration to one in
 // temperature, at the concentration d above its base.

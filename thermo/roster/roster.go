@@ -34,15 +34,24 @@ func Find(what, name string, names []string, also map[string]string) (int, error
 	return 0, fmt.Errorf("unknown %s %q%s; known: %s", what, clip(name), hint(sought, known, names), strings.Join(names, ", "))
 }
 
-// hint names those of names that are near the folded name, in their own order.
+// leastPart is what a part of a name has at least, in bytes, to stand for it.
+const leastPart = 4
+
+// hint names those of names of which the folded name is a part, such as "glycol", or else
+// those that it is near, in their own order.
 func hint(sought string, known map[string]string, names []string) string {
 	var folded []string
-	for f := range known {
-		folded = append(folded, f)
-	}
 	meant := make(map[string]bool)
-	for _, f := range near.Names(sought, folded) {
-		meant[known[f]] = true
+	for f, n := range known {
+		folded = append(folded, f)
+		if len(sought) >= leastPart && strings.Contains(f, sought) {
+			meant[n] = true
+		}
+	}
+	if len(meant) == 0 {
+		for _, f := range near.Names(sought, folded) {
+			meant[known[f]] = true
+		}
 	}
 	var guess []string
 	for _, n := range names {

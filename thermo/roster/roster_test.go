@@ -26,6 +26,9 @@ func TestFindAnswersUnknown(t *testing.T) {
 	for written, want := range map[string]string{
 		"carbn steel":           `unknown solid "carbn steel", did you mean "carbon steel"` + all,
 		"alumnum":               `unknown solid "alumnum", did you mean "aluminium"` + all,
+		"steels":                `unknown solid "steels", did you mean "carbon steel"` + all,
+		"stee":                  `unknown solid "stee", did you mean "carbon steel" or "stainless steel 304"` + all,
+		"lea":                   `unknown solid "lea", did you mean "lead"` + all,
 		"":                      `unknown solid ""` + all,
 		"gold":                  `unknown solid "gold"` + all, // leads to what is not listed
 		"helium":                `unknown solid "helium"` + all,

@@ -220,10 +220,48 @@ func TestNames(t *testing.T) {
 	}
 }
 
-func TestMeltingPoint(t *testing.T) {
-	for name, want := range map[string]float64{"aluminium": 933.473, "ice": 273.15, "carbon steel": math.Inf(1)} {
-		if lo, hi := mustNew(t, name).Span(atm); lo != 0 || hi != want {
-			t.Errorf("%s: Span = %g, %g; want 0, %g", name, lo, hi, want)
+// Range, melting point and half-widths of every solid; melting points by ITS-90 (aluminium,
+// copper) and handbooks (from memory).
+func TestRanges(t *testing.T) {
+	inf := math.Inf(1)
+	for name, want := range map[string]struct{ minT, maxT, melting, cp, density float64 }{
+		"aluminium":                 {200, 900, 933.473, 0.01, 0.05},
+		"copper":                    {200, 900, 1357.77, 0.01, 0.05},
+		"iron":                      {200, 900, 1811, 0.01, 0.05},
+		"quartz":                    {200, 800, inf, 0.01, 0.05},
+		"alumina":                   {200, 900, 2327, 0.01, 0.05},
+		"carbon steel":              {293.15, 873.15, inf, 0.05, 0.05},
+		"dry concrete":              {293.15, 873.15, inf, 0.05, 0.05},
+		"stainless steel 304":       {250, 400, inf, 0.05, 0.05},
+		"brass 70/30":               {250, 400, inf, 0.05, 0.05},
+		"lead":                      {250, 400, 600.61, 0.05, 0.05},
+		"soda-lime glass":           {273.15, 373.15, inf, 0.05, 0.05},
+		"common brick":              {273.15, 373.15, inf, 0.05, 0.1},
+		"dry sand":                  {273.15, 373.15, inf, 0.05, 0.1},
+		"bituminous coal":           {273.15, 373.15, inf, 0.1, 0.1},
+		"paper":                     {273.15, 373.15, inf, 0.1, 0.1},
+		"oak wood":                  {273.15, 373.15, inf, 0.1, 0.1},
+		"ice":                       {243.15, 273.15, 273.15, 0.05, 0.05},
+		"high-density polyethylene": {273.15, 343.15, 403, 0.1, 0.1},
+		"granite":                   {273.15, 373.15, inf, 0.05, 0.05},
+	} {
+		f := mustNew(t, name)
+		maxP, at := 10e6, 300.0
+		if name == "ice" {
+			maxP, at = 2e5, 273.15
 		}
+		if b := f.Bounds(); b != (thermo.Bounds{MinT: want.minT, MaxT: want.maxT, MaxP: maxP}) {
+			t.Errorf("%s: %+v, want %+v to %g Pa", name, b, want, maxP)
+		}
+		if lo, hi := f.Span(atm); lo != 0 || hi != want.melting {
+			t.Errorf("%s: from %g to %g K, want 0 to %g", name, lo, hi, want.melting)
+		}
+		cp, density := f.Uncertainty(at, atm)
+		if r := math.Sqrt(3); math.Abs(cp*r-want.cp) > 1e-12 || math.Abs(density*r-want.density) > 1e-12 {
+			t.Errorf("%s: half-widths %g, %g; want %g, %g", name, cp*r, density*r, want.cp, want.density)
+		}
+	}
+	if n := len(Names()); n != 19 {
+		t.Errorf("%d solids, want the 19 above", n)
 	}
 }
