@@ -15,17 +15,18 @@
 // difference. Air is refused below its dew or frost point; Sensible goes on below it with the
 // same W, as if nothing condensed.
 //
-// The range is -50 °C to 200 °C, 20 kPa to 300 kPa and W up to 0.25. Against the real mixture
-// of IAPWS G8-10 density is off by up to 0.16 % and cp by 0.22 % at atmospheric pressure to 30
-// °C, 0.48 % to 40 °C and 1.7 % at 60 °C saturated; a constant cp of dry air is 0.5 % low at
-// 100 °C and 1.9 % low at 200 °C. With much vapour it is worse, at atmospheric pressure and W 0.25 cp
-// 2.7 % low at 195 °C and density 0.22 % at 70 °C. The worst corners of the range: nearly saturated at 96 °C, 300 kPa and
-// W 0.25 cp is 3.8 % low; dry at -50 °C and 300 kPa density is 0.46 % low. The uncertainty follows these
-// deviations by state.
-// The relations agree with psychrolib to its last digits.
+// The range is -50 °C to 200 °C, 20 kPa to 300 kPa and W up to 0.25. Against the real mixture of
+// IAPWS G8-10 density is off by up to 0.16 % and cp by 0.22 % at atmospheric pressure to 30 °C,
+// 0.48 % to 40 °C and 1.7 % at 60 °C saturated; a constant cp of dry air is 0.5 % low at 100 °C
+// and 1.9 % low at 200 °C. With much vapour it is worse, at atmospheric pressure and W 0.25 cp
+// 2.8 % low at 200 °C and density 0.22 % at 70 °C. The worst corners of the range: saturated at
+// 95.5 °C, 300 kPa and W 0.25 cp is 3.84 % low; dry at -50 °C and 300 kPa density is 0.46 % low.
+// The uncertainty follows these deviations by state. The relations agree with psychrolib to its
+// last digits.
 //
-// Relative humidity below 0 °C is taken over ice, as the saturation equations are. Most sensors, and weather
-// services by the WMO's convention, state it over supercooled water there: see [HumidityRatio].
+// Relative humidity below 0 °C is taken over ice, as the saturation equations are. Most sensors,
+// and weather services by the WMO's convention, state it over supercooled water there: see
+// [HumidityRatio].
 //
 // Not modelled: fog and rain carried along, the latent heat of what condenses, dissolved air and
 // the enhancement of the vapour's pressure by the air about it (0.5 % of W at

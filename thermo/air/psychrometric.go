@@ -22,10 +22,10 @@ const noise = 1.02
 // with the partial pressure pw from the saturation equations, or for the wet bulb W from the
 // energy balance of the wick, over ice below 0 °C. A dew point below 0 °C is the frost point.
 //
-// A relative humidity below 0 °C is over ice too. Most sensors, and weather services by the convention of the
-// WMO, mean over supercooled water: the same reading then is 1.10 times as much vapour at -10 °C, 1.22 times
-// at -20 °C, and saturation over ice already shows as 91 % and 82 %. Give such a reading as a frost
-// point or a humidity ratio.
+// A relative humidity below 0 °C is over ice too. Most sensors, and weather services by the
+// convention of the WMO, mean over supercooled water: the same reading then is 1.10 times as much
+// vapour at -10 °C, 1.22 times at -20 °C, and saturation over ice already shows as 91 % and 82 %.
+// Give such a reading as a frost point or a humidity ratio.
 //
 // A humidity above saturation by up to 2 % in pw is taken for saturation, as sensors have
 // such errors. Beyond, and for any other figure that cannot be, the error names the

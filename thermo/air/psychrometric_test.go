@@ -171,9 +171,9 @@ func TestHumidityRatioRefuses(t *testing.T) {
 	}
 }
 
-// What a relative humidity over supercooled water is more than one over ice: 1.10 at -10 °C and 1.22 at
-// -20 °C (WMO No. 8, annex on the formulas of Magnus, from memory: 6.112 hPa · exp(17.62 t/(243.12 + t)) over
-// water, exp(22.46 t/(272.62 + t)) over ice).
+// What a relative humidity over supercooled water is more than one over ice: 1.10 at -10 °C and
+// 1.22 at -20 °C (WMO No. 8, annex on the formulas of Magnus, from memory: 6.112 hPa · exp(17.62
+// t/(243.12 + t)) over water, exp(22.46 t/(272.62 + t)) over ice).
 func TestOverIce(t *testing.T) {
 	for celsius, want := range map[float64]float64{-10: 1.10, -20: 1.22} {
 		water := 611.2 * math.Exp(17.62*celsius/(243.12+celsius))

@@ -63,8 +63,8 @@ func TestCoolingAtConstantRatio(t *testing.T) {
 	}
 }
 
-// ASHRAE Handbook Fundamentals, chapter 1, example (from memory): 10 m³/s of air saturated at 2
-// °C are heated to 40 °C; from the chart 12.76 kg/s of dry air (a volume of 0.784 m³/kg read
+// ASHRAE Handbook Fundamentals, chapter 1, example (from memory): 10 m³/s of air saturated at
+// 2 °C are heated to 40 °C; from the chart 12.76 kg/s of dry air (a volume of 0.784 m³/kg read
 // within 0.0015) and 491 kW, by the relations 490.9 kW.
 func TestHeatingOfSaturatedAir(t *testing.T) {
 	const p = 101325

@@ -9,8 +9,8 @@ import (
 )
 
 // Combustion is the air that a fuel burns with: dry air of the composition of [DryAir] and its
-// humidity. One of excess and oxygen left is given: of the dry gas, as an analyser behind a cooler has it, or of the wet
-// one, as a zirconia probe in the duct has it.
+// humidity. One of excess and oxygen left is given: of the dry gas, as an analyser behind a cooler
+// has it, or of the wet one, as a zirconia probe in the duct has it.
 type Combustion struct {
 	ExcessAir     float64 // air beyond the stoichiometric, as a fraction of it: 0.2 for 20 %
 	DryO2         float64 // mole fraction of O2 in the dry flue gas; 0: not given

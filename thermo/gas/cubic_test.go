@@ -7,8 +7,8 @@ import (
 	"heatreeve/thermo"
 )
 
-// The attraction falls with temperature and its slope flattens, from 100 K far beyond the range; at the end of
-// the straight line neither it nor its two derivatives have a step.
+// The attraction falls with temperature and its slope flattens, from 100 K far beyond the range;
+// at the end of the straight line neither it nor its two derivatives have a step.
 func TestAttraction(t *testing.T) {
 	for name, fractions := range everyGas() {
 		c, err := compose(fractions, "mole fraction")

@@ -50,8 +50,8 @@ func (vs *vapours) clear(T, p float64) bool {
 	return false
 }
 
-// dry tells that T in K lies above the dew point at p in Pa, but for a hair; in less time than it takes to find
-// that.
+// dry tells that T in K lies above the dew point at p in Pa, but for a hair; in less time than it
+// takes to find that.
 func (vs *vapours) dry(T, p float64) bool {
 	y, logP, sum := 1/T, math.Log(p), 0.0
 	for k := range vs.all {
@@ -95,9 +95,10 @@ func (vs *vapours) dewPoint(p float64) (T float64, formula string) {
 //
 //	Σ x p/ps(T) = 1
 //
-// by Raoult, with the vapour pressures ps of the straight lines in 1/T, which run on above the critical points; and
-// the component of which most is in that liquid. start in K is the highest of the components' own dew points. The logarithm of the
-// sum is convex in 1/T, so Newton's steps from there fall one way to the root.
+// by Raoult, with the vapour pressures ps of the straight lines in 1/T, which run on above the
+// critical points; and the component of which most is in that liquid. start in K is the highest of
+// the components' own dew points. The logarithm of the sum is convex in 1/T, so Newton's steps
+// from there fall one way to the root.
 func (vs *vapours) together(p, start float64) (T float64, formula string) {
 	if start == 0 {
 		return 0, ""

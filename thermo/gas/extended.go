@@ -10,9 +10,9 @@ import (
 )
 
 // extended is a reference equation that goes on above its highest temperature: the ideal part is
-// that of the polynomials from there on, the residuals are the equation's own. They are small there and
-// fade out: from 200 K above their ends the equations stay within 0.3 % of cp (ammonia 0.9 %) and 1.1 % of the
-// density from Peng and Robinson's, to 100 bar.
+// that of the polynomials from there on, the residuals are the equation's own. They are small
+// there and fade out: from 200 K above their ends the equations stay within 0.3 % of cp (ammonia
+// 0.9 %) and 1.1 % of the density from Peng and Robinson's, to 100 bar.
 type extended struct {
 	helmholtz.Gas
 	ideal    polynomials
@@ -93,9 +93,9 @@ func (e extended) check(T, p float64) error {
 	return nil
 }
 
-// Uncertainty is, above the highest temperature of the equation, that of the polynomials joined with a tenth of
-// the residual and 0.03 B in cp, B = bp/(RT) the covolume's part; in density what it is where the equation ends
-// joined with 0.1 B.
+// Uncertainty is, above the highest temperature of the equation, that of the polynomials joined
+// with a tenth of the residual and 0.03 B in cp, B = bp/(RT) the covolume's part; in density what
+// it is where the equation ends joined with 0.1 B.
 func (e extended) Uncertainty(T, p float64) (cp, density float64) {
 	if !(T > e.top) {
 		return e.Gas.Uncertainty(T, p)

@@ -119,10 +119,10 @@ func ideal(t *testing.T, species string, T float64) (cp, h float64) {
 // J/(mol K) and 0.6 J/mol (half a joule, and the gas constant of their time).
 //
 // Where more than 1 % parts us from JANAF, we stay with the NASA coefficients. CH4: JANAF's
-// methane is of 1961 and falls behind Setzmann and Wagner (1991) too, by 0.5 % at 600 K. NO2 and N2O:
-// JANAF's tables of 1964 leave out or shorten the anharmonic terms which Gurvich, whom NASA
-// follows, carries (from memory). All three are worst at 1500 K. What is right at 1500 K is not settled by that: the
-// deviation stays in the uncertainty, see fits.
+// methane is of 1961 and falls behind Setzmann and Wagner (1991) too, by 0.5 % at 600 K. NO2 and
+// N2O: JANAF's tables of 1964 leave out or shorten the anharmonic terms which Gurvich, whom NASA
+// follows, carries (from memory). All three are worst at 1500 K. What is right at 1500 K is not
+// settled by that: the deviation stays in the uncertainty, see fits.
 func TestAgainstTables(t *testing.T) {
 	type percent struct{ cp, h float64 }
 	tolerance := map[string]struct{ cool, hot percent }{ // up to 1000 K and up to 1500 K
@@ -235,8 +235,8 @@ func TestTrustOfWaterVapour(t *testing.T) {
 	}
 }
 
-// The thin gas against IAPWS-IF97, region 5 above 1073 K: within 0.02 % to 1000 K, and from there on ever farther below, 1.14 %
-// at 2000 K. A deviation is at most the half-width that the uncertainty is taken from.
+// The thin gas against IAPWS-IF97, region 5 above 1073 K: ever farther below it, 1.14 % at 2000 K. A
+// deviation is at most the half-width √3 u of the stated uncertainty.
 func TestHotWaterVapour(t *testing.T) {
 	worst := 0.0
 	for T := 400.0; T <= maxT; T += 25 {

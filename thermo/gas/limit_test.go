@@ -23,8 +23,8 @@ func TestLimitIsSmooth(t *testing.T) {
 	}
 }
 
-// States that plants have every day, of gases and mixtures without a reference equation: each has its figures,
-// with a stated uncertainty of cp of at most 10 %.
+// States that plants have every day, of gases and mixtures without a reference equation: each has
+// its figures, with a stated uncertainty of cp of at most 10 %.
 func TestOrdinaryStates(t *testing.T) {
 	for _, tt := range []struct {
 		name      string
@@ -53,7 +53,8 @@ func TestOrdinaryStates(t *testing.T) {
 	}
 }
 
-// A trace in carbon dioxide turns the model to Peng and Robinson: within twice the uncertainty of the pure gas.
+// A trace in carbon dioxide turns the model to Peng and Robinson: within twice the uncertainty of
+// the pure gas.
 func TestNearlyPure(t *testing.T) {
 	f, pure := mustNew(t, map[string]float64{"CO2": 0.9999, "N2": 0.0001}, Best), pure(t, "CO2", Best)
 	compared := 0
@@ -93,8 +94,9 @@ func TestUncertaintyIsBounded(t *testing.T) {
 	}
 }
 
-// The dew point of hydrocarbons together: within 1.6 K, as straight lines are, of Raoult with the vapour pressures of the reference equations; and
-// half n-butane, half n-pentane at 1 atm, 296 K (worked apart from this project, from the same two straight lines).
+// The dew point of hydrocarbons together: within 1.6 K, as straight lines are, of Raoult with the
+// vapour pressures of the reference equations; and half n-butane, half n-pentane at 1 atm, 296 K
+// (worked apart from this project, from the same two straight lines).
 func TestDewPointTogether(t *testing.T) {
 	f := mustNew(t, map[string]float64{"C4H10": 0.5, "C5H12": 0.5}, Best)
 	if lo, _ := f.Span(101325); math.Abs(lo-296.0) > 0.05 {

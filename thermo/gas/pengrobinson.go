@@ -25,7 +25,8 @@ type cubic struct {
 // warm is the reduced temperature from which plain gases are trusted at every pressure.
 const warm = 1.3
 
-// polar gases are those which hold together by more than size and attraction. The dipole of nitric oxide is too small.
+// polar gases are those which hold together by more than size and attraction. The dipole of nitric
+// oxide is too small.
 var polar = map[string]bool{"H2O": true, "NH3": true, "SO2": true, "HCl": true, "NO2": true}
 
 var cubicBounds = thermo.Bounds{MinT: minT, MaxT: maxT, MinP: minP, MaxP: 10e6}
@@ -54,11 +55,14 @@ func (m *cubic) Phase() thermo.Phase   { return thermo.Gas }
 func (m *cubic) Bounds() thermo.Bounds { return cubicBounds }
 func (m *cubic) MolarMass() float64    { return m.ideal.molarMass }
 
-// coldest is the temperature in K below which the equation is not trusted at p in Pa: where p = c·pc·(T/Tc)^5.3,
-// with the critical point of the one fluid, and from 1.3 Tc on every pressure up to 100 bar is let
-// pass. c is 0.6 for gases without a dipole: up to three quarters of the critical temperature that lies beyond
-// condensing. It is 0.2 for polar gases, and these together with others take a little more of both limits.
-// cp may be off by 5 to 15 % there, which the uncertainty says, itself hardly ever above 15 %.
+// coldest is the temperature in K below which the equation is not trusted at p in Pa: where
+//
+//	p = c·pc·(T/Tc)^5.3
+//
+// with the critical point of the one fluid, and 1.3 Tc at most. c is 0.6 for gases without a
+// dipole, whose dew point lies above this up to some 0.75 Tc, and 0.2 for polar ones; where the
+// two meet both limits are higher. cp may be off by 5 to 15 % at the limit. The uncertainty says
+// so; it is above 15 % only where polar and other gases meet near 100 bar.
 func (m *cubic) coldest(p float64) float64 {
 	return min(math.Pow(p/m.coldP, 1/5.3)*m.one.T, m.warm)
 }
@@ -136,9 +140,9 @@ func (m *cubic) Uncertainty(T, p float64) (cp, density float64) {
 }
 
 // missed are the relative deviations from the ideal gas by pairs of like polar molecules that the
-// equation does not see. Of a pure polar gas it misses some 85 % at 0.6 of the critical temperature,
-// half at the critical temperature and nothing above 1.5 of it (water, ammonia). In a mixture they meet with the square
-// of the mole fraction.
+// equation does not see. Of a pure polar gas it misses some 85 % at 0.6 of the critical
+// temperature, half at the critical temperature and nothing above 1.5 of it (water, ammonia). In a
+// mixture they meet with the square of the mole fraction.
 func (m *cubic) missed(T, p float64) (cp, density float64) {
 	for k := range m.dipoles {
 		d := &m.dipoles[k]

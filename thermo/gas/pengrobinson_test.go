@@ -170,8 +170,9 @@ func TestHumidAir(t *testing.T) {
 	}
 }
 
-// Wet air at 440 kPa, 13 K above its dew point, against IAPWS G8-10 as python3-iapws has it: the residuals of the
-// equation see half of what the vapour's own pairs do. Within twice the uncertainty.
+// Wet air at 440 kPa, 13 K above its dew point, against IAPWS G8-10 as python3-iapws has it: the
+// residuals of the equation see half of what the vapour's own pairs do. Within twice the
+// uncertainty.
 func TestWetAirUnderPressure(t *testing.T) {
 	const T, p, W, cp, density = 407.85, 440e3, 1.25, 1695.978, 2.869203
 	x, err := MoleFractions(map[string]float64{"air": 1 / (1 + W), "H2O": W / (1 + W)})

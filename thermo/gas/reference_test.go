@@ -93,8 +93,9 @@ func TestBeyondIsContinuous(t *testing.T) {
 	}
 }
 
-// Carried on, an equation and that of Peng and Robinson agree within twice the uncertainties of the two, and within the
-// figures told; and both keep dh/dp = v − T·dv/dT and cp − cv = −T(∂v/∂T)²/(∂v/∂p).
+// Carried on, an equation and that of Peng and Robinson agree within twice the uncertainties of
+// the two, and within the figures told; and both keep dh/dp = v − T·dv/dT and cp − cv =
+// −T(∂v/∂T)²/(∂v/∂p).
 func TestBeyondAgainstPengRobinson(t *testing.T) {
 	for _, s := range helmholtz.Formulas() {
 		f, other := pure(t, s, Best).(extended), pure(t, s, PengRobinson)
@@ -131,8 +132,8 @@ func TestBeyondAgainstPengRobinson(t *testing.T) {
 	}
 }
 
-// lawsOf returns by how much dh/dp misses v − T·dv/dT, as a part of v, and cp − cv its own law, as a part of
-// it.
+// lawsOf returns by how much dh/dp misses v − T·dv/dT, as a part of v, and cp − cv its own law, as
+// a part of it.
 func lawsOf(t *testing.T, f thermo.Fluid, T, p float64) (slope, capacities float64) {
 	t.Helper()
 	at := func(T, p float64) thermo.Properties {

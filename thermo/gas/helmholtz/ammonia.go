@@ -1,8 +1,8 @@
 package helmholtz
 
-// ammonia is the equation of state of ammonia, as the CoolProp fluid file of 2020 has it. Its paper's range, 195.49 to 725 K
-// and to 1000 MPa, and its paper's expanded uncertainty, density 0.2 %, cp 2 %,
-// are from memory.
+// ammonia is the equation of state of ammonia, with the coefficients of the CoolProp fluid file,
+// whose key names the year 2020; the paper of 2023 is from memory. Its range, 195.49 to 725 K and
+// to 1000 MPa, and its paper's expanded uncertainty, density 0.2 %, cp 2 %, are from memory.
 var ammonia = substance{
 	formula: "NH3", name: "ammonia",
 	source:    "Gao, Wu, Bell, Harvey, Lemmon, J. Phys. Chem. Ref. Data 52 (2023) 013102",

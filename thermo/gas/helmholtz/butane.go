@@ -1,8 +1,7 @@
 package helmholtz
 
-// butane is the equation of state of n-butane. Its paper's range, 134.895 to 575
-// K, and its paper's expanded uncertainty, density 0.02 to 0.1 %, cp 1 %, are
-// from memory.
+// butane is the equation of state of n-butane. Its paper's range, 134.895 to 575 K, and its
+// paper's expanded uncertainty, density 0.02 to 0.1 %, cp 1 %, are from memory.
 var butane = substance{
 	formula: "C4H10", name: "n-butane",
 	source:    "Bücker, Wagner, J. Phys. Chem. Ref. Data 35 (2006) 929",

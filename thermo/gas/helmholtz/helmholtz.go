@@ -11,7 +11,7 @@
 // Range. From the triple temperature to the paper's upper end, at most 1500 K
 // (air 2000 K): nitrogen, oxygen, argon, carbon dioxide and helium are taken
 // beyond their papers there, where they are all but ideal and their cp was
-// compared with JANAF. Pressures to 100 MPa (oxygen 80, n-butane 12), liquids to
+// compared with JANAF. Pressures from 1 Pa to 100 MPa (oxygen 80, n-butane 12), liquids to
 // 50 MPa. The figures of a paper beside each table are from memory, as are the
 // volume and page numbers in the sources.
 //
@@ -30,14 +30,14 @@
 // to 0.26 K/MPa, from memory), keeps liquids from freezing and dense hydrogen and
 // helium from being solid.
 //
-// Found. 162 states of 11 gases as worked by another evaluator: equal to the six
-// digits given. Dry air against python3-iapws, 300 states to 100 MPa: pressure
-// 1e-14, cp 4e-10, enthalpy 1e-14 of its span. All tables but that of ammonia, as
-// evaluated by python3-iapws: the same, pressure of liquids 5e-10. Ammonia gas against the equation of
-// Tillner-Roth (1993), to 8 MPa: pressure 0.09 %, cp 2.1 %, at the dew point.
-// Normal boiling points within 0.02 K. Ideal parts against JANAF and TRC: 0.07 %
-// of cp for simple gases, 0.3 to 0.6 % for hydrocarbons and ammonia. ∂h/∂T is cp
-// within 4e-9 everywhere.
+// Found. 162 states of 11 gases as worked by another evaluator: equal to the six digits given.
+// Dry air against python3-iapws, 300 states to 100 MPa: pressure 1e-14, cp 4e-10, enthalpy 1e-14
+// of its span. All tables but that of ammonia, as evaluated by python3-iapws: the same, pressure
+// of liquids 5e-10. Ammonia gas against the equation of Tillner-Roth (1993), to 8 MPa: pressure
+// 0.09 %, cp 2.1 %, at the dew point. Normal boiling points within 0.02 K. Ideal parts against
+// JANAF and TRC: 0.07 % of cp for simple gases, 0.3 to 0.6 % for hydrocarbons and ammonia, which
+// the stated uncertainty of the thin gas covers. Beyond the upper ends the residuals can be had
+// by [Gas.Beyond]; ∂h/∂T is cp within 4e-9 everywhere.
 //
 // Not modelled: frost and sublimation; mixtures, but for air, whose composition
 // is fixed and whose dew line is its own, while its liquid is not given; liquid

@@ -1,8 +1,7 @@
 package helmholtz
 
-// methane is the equation of state of methane. Its paper's range, 90.6941 to 625
-// K and to 1000 MPa, and its paper's expanded uncertainty, density 0.03 to 0.07
-// %, cp 1 %, are from memory.
+// methane is the equation of state of methane. Its paper's range, 90.6941 to 625 K and to 1000
+// MPa, and its paper's expanded uncertainty, density 0.03 to 0.07 %, cp 1 %, are from memory.
 var methane = substance{
 	formula: "CH4", name: "methane",
 	source:    "Setzmann, Wagner, J. Phys. Chem. Ref. Data 20 (1991) 1061",

@@ -19,8 +19,8 @@ const (
 // substance here.
 const melting = 0.3e-6
 
-// leastP in Pa is where a gas begins: thinner, its molecules meet the wall of a pipe before one another, and far
-// thinner the arithmetic ends.
+// leastP in Pa is where a gas begins: thinner, its molecules meet the wall of a pipe before one
+// another, and far thinner the arithmetic ends.
 const leastP = 1
 
 // gas is the gas of s, and above the critical pressure the fluid above the
