@@ -31,11 +31,11 @@
 //     Against IAPWS G8-10 cp 0.2 % to 30 °C, 1.7 % at 60 °C saturated; density 0.16 %.
 //   - glycols, alcohols, brines, ammonia in water: Melinder's polynomials, from the
 //     freezing point to 100 °C (glycols), 40 °C or 30 °C. Against ASHRAE, Laliberté and
-//     IAPWS G4-01 cp 0.4 % to 4.6 %, density 0.05 % to 0.9 %.
+//     IAPWS G4-01 cp 0.4 % to 4.6 %, density 0.05 % to 0.9 %; cold strong ammonia more.
 //   - seawater: Sharqawy et al. and Nayar et al., 0 °C to 120 °C, 120 g/kg, 12 MPa.
-//     Against TEOS-10 cp 0.30 %, density 0.055 %.
+//     Against TEOS-10 cp 0.30 %, density 0.055 %; brine of 120 g/kg under pressure 0.75 %.
 //   - liquid food: Choi and Okos by composition, 0 °C to 150 °C. Its water against
-//     IAPWS-IF97: cp 2.1 % low at 0 °C.
+//     IAPWS-IF97: cp 2.1 % low at 0 °C. Melting fat is in the uncertainty alone.
 //   - petroleum: Kesler and Lee, or Cragoe, with ASTM D1250, -18 °C to 150 °C. Four
 //     correlations differ by up to 6.4 % at the tested states of common Watson factors,
 //     by up to 17.5 % over all from 10 to 13; the uncertainty follows the state.
@@ -47,7 +47,7 @@
 //
 // Phase change and the heat of it, metastable states, reaction and dissociation,
 // the pairing of NO2 (refused where it tells), acid dew points, adsorption, frost,
-// inhibitors and other additives, entrained gas or solids, melting fats, pour
-// points, kinetic and potential energy. Liquids without a published
-// compressibility have cv set to cp.
+// inhibitors and other additives, entrained gas or solids, the heat of melting fats, light
+// ends of petroleum, pour points, kinetic and potential energy. Liquids without a published
+// compressibility are [Incompressible], with cv set to cp.
 package thermo

@@ -20,8 +20,10 @@ type waterBound struct{}
 
 func waterBoils(float64) boiling { return waterBound{} }
 
-// minPressure: below it water boils at its freezing point.
-func (waterBound) minPressure() float64 { return 611.2127 }
+// leastPressure in Pa is where water boils at its freezing point.
+var leastPressure = water.Liquid().Bounds().MinP
+
+func (waterBound) minPressure() float64 { return leastPressure }
 
 func (waterBound) temperature(p float64) float64 {
 	T, err := water.SaturationTemperature(p)
@@ -54,7 +56,7 @@ var (
 func ethanolBoils(float64) boiling  { return &ethanol }
 func methanolBoils(float64) boiling { return &methanol }
 
-func (a *antoine) minPressure() float64 { return waterBound{}.minPressure() }
+func (a *antoine) minPressure() float64 { return leastPressure }
 
 func (a *antoine) temperature(p float64) float64 {
 	return a.b/(a.a-math.Log10(p/1e5)) - a.c

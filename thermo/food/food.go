@@ -26,7 +26,7 @@
 // Fat melts: that of milk takes up some 80 kJ/kg between 0 °C and 40 °C (from memory),
 // which is as much again as its cp. It is not in cp, since how much of it has set depends
 // on the fat and on how it was cooled; but all of it is in the uncertainty of cp below 40
-// °C, 2 % of whole milk's and 26 % of cream's. An oil that stays liquid knows better than
+// °C, 2 % of whole milk's and 25 % of cream's. An oil that stays liquid knows better than
 // that.
 //
 // Not modelled: freezing and ice, dissolved or entrained gas, and all that cooking changes.
@@ -42,10 +42,12 @@ import (
 const (
 	zeroC       = 273.15 // K
 	minT, maxT  = 273.15, 423.15
-	minPressure = 611.2127 // Pa: below it water boils at its freezing point
-	maxPressure = 2.5e6    // Pa
-	referenceT  = 333.15   // K, where the pressure term is taken
+	maxPressure = 2.5e6  // Pa
+	referenceT  = 333.15 // K, where the pressure term is taken
 )
+
+// minPressure in Pa is where water boils at its freezing point.
+var minPressure = water.Liquid().Bounds().MinP
 
 // quadratic is a polynomial in °C, lowest power first.
 type quadratic [3]float64
