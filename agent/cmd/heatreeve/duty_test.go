@@ -122,7 +122,7 @@ func TestDutyTellsItsWorking(t *testing.T) {
 		},
 		{
 			[]string{"duty", "--from", "70°C", "--to", "50°C", "--flow", "10 m3/h", "--pressure", "3 barg", "--barometer", "100 kPa", "water"},
-			[]string{"The stream gives ", "10 m3/h at the inlet = 0.00277778 m3/s ×", "400 kPa absolute", "note: the meter is taken to sit at the inlet; at the outlet", "density to"},
+			[]string{"The stream gives ", "10 m3/h at the inlet = 0.00277778 m3/s", "0.00277778 m3/s ×", "= 343.15 K, 400 kPa:", "pressures are absolute", "note: the meter is taken to sit at the inlet; at the outlet", "density to"},
 		},
 		{
 			[]string{"duty", "water", "--flow", "1 kg/s", "--from", "20°C", "--to", "98°C"},
@@ -134,7 +134,7 @@ func TestDutyTellsItsWorking(t *testing.T) {
 		},
 		{
 			[]string{"duty", "water", "--flow", "1 kg/s", "--from", "20°C", "--to", "30°C", "--pressure", "5 bar", "--outlet-pressure", "3 bar"},
-			[]string{"500 kPa absolute", "300 kPa absolute"},
+			[]string{"= 293.15 K, 500 kPa:", "= 303.15 K, 300 kPa:"},
 		},
 	} {
 		status, out, errs := invoke(tt.args...)
@@ -142,7 +142,7 @@ func TestDutyTellsItsWorking(t *testing.T) {
 			t.Errorf("%q: status %d, %s", tt.args, status, errs)
 		}
 		for _, piece := range tt.want {
-			if !strings.Contains(out, piece) {
+			if !strings.Contains(strings.Join(strings.Fields(out), " "), piece) {
 				t.Errorf("%q does not say %q:\n%s", tt.args, piece, out)
 			}
 		}
@@ -164,7 +164,7 @@ func TestFluidCommandsRefuse(t *testing.T) {
 		{[]string{"properties", "water", "--temperature", "20 °C,"}, exitWrong, "--temperature is missing"},
 		{[]string{"properties", "water", "--temperature", "20,5 °C"}, exitWrong, `"20": unit is missing`},
 		{[]string{"properties", "water", "--temperature", "4 bar"}, exitWrong, "unit of pressure"},
-		{[]string{"properties", "watr", "--temperature", "20 °C"}, exitWrong, `near: "water"; known: water, `},
+		{[]string{"properties", "watr", "--temperature", "20 °C"}, exitWrong, "near: \"water\"\nknown:\n  water, steam, "},
 		{[]string{"properties", "dry", "air", "--temperature", "20 °C"}, exitWrong, `unexpected "air"; words that belong together stand in quotes`},
 		{[]string{"properties", "propylene glycol", "--temperature", "20 °C"}, exitWrong, "wants its strength"},
 		{[]string{"properties", "{gas: {N2: 79 %}}", "--temperature", "20 °C"}, exitWrong, "fluid:1:7: gas: the mole fractions add up to 0.79"},

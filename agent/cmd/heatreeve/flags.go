@@ -60,7 +60,7 @@ func (c *call) expect(wanted int, what string) error {
 }
 
 func (c *call) help() {
-	fmt.Fprintf(c.stdout, "%s\n\n%s.\n", c.usage(), strings.ToUpper(c.about[:1])+c.about[1:])
+	fmt.Fprintf(c.stdout, "%s\n\n%s.\n", c.usageLines("", "    "), strings.ToUpper(c.about[:1])+c.about[1:])
 	if c.more != "" {
 		fmt.Fprintf(c.stdout, "\n%s", c.more)
 	}
@@ -71,11 +71,10 @@ func (c *call) help() {
 			first = false
 		}
 		name, text := flag.UnquoteUsage(f)
-		fmt.Fprintf(c.stdout, "  %s\n        %s", strings.TrimSpace("--"+f.Name+" "+name), text)
 		if f.DefValue != "" && f.DefValue != "0s" && f.DefValue != "false" {
-			fmt.Fprintf(c.stdout, " (default %s)", f.DefValue)
+			text += " (default " + f.DefValue + ")"
 		}
-		fmt.Fprintln(c.stdout)
+		fmt.Fprintf(c.stdout, "  %s\n%s\n", strings.TrimSpace("--"+f.Name+" "+name), indented(text, "        "))
 	})
 	fmt.Fprintf(c.stdout, "\n%s\n", agent.Safety)
 }

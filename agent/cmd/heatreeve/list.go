@@ -3,6 +3,8 @@ package main
 import (
 	"fmt"
 	"io"
+	"strings"
+	"unicode/utf8"
 
 	"heatreeve/thermo/named"
 )
@@ -29,22 +31,33 @@ func tellFluids(w io.Writer, asJSON bool) error {
 		}
 		return printJSON(w, all)
 	}
-	t := newColumns(0)
-	t.line("fluid", "phase", "range, absolute pressure", "source")
+	fmt.Fprint(w, "fluid, with its range at absolute pressure; where N stands for a number, of the\none in brackets\n      phase; source\n\n")
+	form := 0
 	for _, e := range entries {
-		of := ""
-		if e.Form != e.Example {
-			of = " (" + e.Example + ")"
-		}
-		t.line(e.Form, e.Phase.String(), e.Range+of, e.Source)
+		form = max(form, utf8.RuneCountInString(e.Form))
 	}
-	fmt.Fprint(w, t)
+	for i, e := range entries {
+		fmt.Fprintf(w, "%-*s  %s%s\n", form, e.Form, e.Range, ofExample(e))
+		if last := i == len(entries)-1; last || entries[i+1].Source != e.Source || entries[i+1].Phase != e.Phase {
+			fmt.Fprintln(w, indented(e.Phase.String()+"; "+e.Source, "      "))
+		}
+	}
 	_, err := fmt.Fprint(w, ownFluids)
 	return err
 }
 
+// ofExample is the strength or density that the example has in the place of N.
+func ofExample(e named.Entry) string {
+	name, _, ok := strings.Cut(e.Form, " N ")
+	if !ok {
+		return ""
+	}
+	return " (" + strings.TrimPrefix(e.Example, name+" ") + ")"
+}
+
 const ownFluids = `
-Letter case, spaces and hyphens make no difference. Any other fluid is written as in the fluids of a site file:
+Letter case, spaces and hyphens make no difference. Any other fluid is written
+as in the fluids of a site file:
   '{propylene glycol: 30 %, by: volume, uncertainty: 1 %}'
   '{gas: {N2: 79 %, O2: 21 %}, by: mole, model: ideal}'
   '{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}}'

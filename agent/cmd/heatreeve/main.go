@@ -124,10 +124,24 @@ func status(err error, stderr io.Writer) int {
 // usage is the command's line of usage.
 func (c command) usage() string { return strings.TrimSpace("heatreeve " + c.name + " " + c.operand) }
 
+// usageLines is usage in lines, the first behind first, the others behind indent. An option stays with
+// its value.
+func (c command) usageLines(first, indent string) string {
+	var parts []string
+	for _, word := range strings.Fields(c.usage()) {
+		if last := len(parts) - 1; last > 0 && !strings.ContainsAny(word[:1], "[-|") {
+			parts[last] += " " + word
+			continue
+		}
+		parts = append(parts, word)
+	}
+	return lines(first, indent, parts)
+}
+
 func usage(w io.Writer) {
-	fmt.Fprint(w, "heatreeve turns MQTT temperature, flow and pressure tags into live sensible heat loads.\n\n")
+	fmt.Fprint(w, "heatreeve turns MQTT temperature, flow and pressure tags into live sensible\nheat loads.\n\n")
 	for _, c := range commands {
-		fmt.Fprintf(w, "  %s\n        %s\n", c.usage(), c.about)
+		fmt.Fprintf(w, "%s\n        %s\n", c.usageLines("  ", "      "), c.about)
 	}
 	fmt.Fprintf(w, "\n  heatreeve COMMAND --help tells the options of one.\n\nExit status: 0 good, 1 failed, 2 wrong usage or wrong file.\n\n%s\n", agent.Safety)
 }

@@ -106,7 +106,7 @@ func (s point) shown() shown {
 	}
 }
 
-const twice = "± is twice the standard uncertainty. Enthalpy and internal energy count from a zero of the fluid's own:\nonly differences mean anything."
+const twice = "± is twice the standard uncertainty. Enthalpy and internal energy count from a\nzero of the fluid's own: only differences mean anything."
 
 func tellPoint(w io.Writer, f thermo.Fluid, s point) error {
 	v := s.shown()
@@ -118,7 +118,7 @@ func tellPoint(w io.Writer, f thermo.Fluid, s point) error {
 	t.line("  specific heat", "cv", v.cv+" kJ/(kg K)")
 	t.line("  density", "ρ", v.density+" ± "+v.densityU+" kg/m3", percent(2*s.DensityU))
 	fmt.Fprint(w, t)
-	_, err := fmt.Fprintf(w, "\n%s\n%s\nSource: %s\n", spanOf(f, s.Pressure), twice, s.Source)
+	_, err := fmt.Fprintf(w, "\n%s\n%s\n%s\n", wrapped(spanOf(f, s.Pressure), ""), twice, wrapped("Source: "+s.Source, ""))
 	return err
 }
 
@@ -148,7 +148,7 @@ func tellPoints(w io.Writer, f thermo.Fluid, points []point) error {
 		t.line(v.t, v.h, v.u, v.cp+" ±", v.cpU, v.cv, v.density+" ±", v.densityU)
 	}
 	fmt.Fprint(w, t)
-	_, err := fmt.Fprintf(w, "\n%s\nSource: %s\n", twice, f.Source())
+	_, err := fmt.Fprintf(w, "\n%s\n%s\n", twice, wrapped("Source: "+f.Source(), ""))
 	return err
 }
 

@@ -9,6 +9,7 @@ import (
 
 	"heatreeve/agent/site"
 	"heatreeve/thermo"
+	"heatreeve/thermo/named"
 	"heatreeve/thermo/unit"
 )
 
@@ -16,9 +17,9 @@ import (
 const atmosphere = "101.325 kPa"
 
 // fluidHelp tells what the operand may be, and how the commands about one end.
-const fluidHelp = `FLUID is a name, such as water, CO2, 'propylene glycol 32 %' or 'seawater 35 g/kg'
-(heatreeve properties --list tells all), or a declaration as in the fluids of a
-site file, such as '{gas: {N2: 79 %, O2: 21 %}}'. Quantities carry their unit.
+const fluidHelp = `FLUID is a name, such as water, CO2 or 'propylene glycol 32 %' (heatreeve
+properties --list tells all), or a declaration as in the fluids of a site file,
+such as '{gas: {N2: 79 %, O2: 21 %}}'. Quantities carry their unit.
 Options may stand before or after FLUID. A state that the fluid does not have
 ends with status 1, a wrong FLUID or option with 2.
 `
@@ -28,9 +29,12 @@ ends with status 1, a wrong FLUID or option with 2.
 func (c *call) fluid() (thermo.Fluid, error) {
 	f, err := site.ParseFluid(c.operands[0])
 	var faults site.Faults
+	var unknown *named.UnknownError
 	switch {
 	case errors.As(err, &faults):
 		return nil, faults
+	case errors.As(err, &unknown):
+		return nil, wrongf("heatreeve %s: %s\nknown:\n%s", c.name, unknown.Hint(), listing(named.Names(), "  "))
 	case err != nil:
 		return nil, wrongf("heatreeve %s: %w", c.name, err)
 	}

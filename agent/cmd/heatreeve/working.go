@@ -5,25 +5,25 @@ import (
 	"io"
 	"math"
 	"strings"
+	"unicode/utf8"
 
 	"heatreeve/agent/loads"
+	"heatreeve/thermo"
 )
 
 // tell writes the calculation line by line. The working carries one digit more than
 // the uncertainty leaves, so that its lines can be checked by hand.
 func (h *hand) tell(w io.Writer) error {
 	x, r := h.state, h.Result
-	fmt.Fprintf(w, "%s, %v, %s °C to %s °C\n\n", h.fluid.Name(), h.flow, celsius(x.Inlet), celsius(x.Outlet))
+	fmt.Fprintf(w, "%s\n\n", wrapped(fmt.Sprintf("%s, %v, %s °C to %s °C; pressures are absolute", h.fluid.Name(), h.flow, celsius(x.Inlet), celsius(x.Outlet)), ""))
 	n, rise := h.places(), (r.Outlet.Enthalpy-r.Inlet.Enthalpy)/1e3
-	t := newColumns(0)
-	for _, e := range [...]struct {
-		name         string
-		T, p, h, rho float64
-	}{{"inlet", x.Inlet, x.Pressure, r.Inlet.Enthalpy, r.Inlet.Density}, {"outlet", x.Outlet, x.OutletPressure, r.Outlet.Enthalpy, r.Outlet.Density}} {
-		t.line("  "+e.name, fmt.Sprintf("%s °C = %s K, %s kPa absolute:", celsius(e.T), figures(e.T, 6), figures(e.p/1e3, 6)),
-			fmt.Sprintf("h = %s kJ/kg, ρ = %s kg/m3", decimals(e.h/1e3, n), figures(e.rho, 6)))
+	at := func(T, p float64) string {
+		return fmt.Sprintf("%s °C = %s K, %s kPa:", celsius(T), figures(T, 6), figures(p/1e3, 6))
 	}
-	fmt.Fprint(w, t)
+	in, out := at(x.Inlet, x.Pressure), at(x.Outlet, x.OutletPressure)
+	wide := max(utf8.RuneCountInString(in), utf8.RuneCountInString(out))
+	fmt.Fprintf(w, "  inlet  %-*s %s\n", wide, in, h.holds(r.Inlet))
+	fmt.Fprintf(w, "  outlet %-*s %s\n", wide, out, h.holds(r.Outlet))
 	fmt.Fprintf(w, "  mass flow  %s\n", h.massFlow())
 	fmt.Fprintf(w, "  duty       %s kg/s × (%s − %s) kJ/kg\n", figures(r.MassFlow, 6), decimals(r.Outlet.Enthalpy/1e3, n), subtrahend(decimals(r.Inlet.Enthalpy/1e3, n)))
 	fmt.Fprintf(w, "             = %s kg/s × %s kJ/kg = %s kW\n", figures(r.MassFlow, 6), decimals(rise, n), h.kilowatts(r.Duty, 1))
@@ -34,10 +34,15 @@ func (h *hand) tell(w io.Writer) error {
 		h.conclude(w)
 	}
 	for _, note := range h.notes {
-		fmt.Fprintf(w, "note: %s\n", note)
+		fmt.Fprintln(w, wrapped("note: "+note, "  "))
 	}
-	_, err := fmt.Fprintf(w, "Source: %s\n", h.fluid.Source())
+	_, err := fmt.Fprintln(w, wrapped("Source: "+h.fluid.Source(), ""))
 	return err
+}
+
+// holds tells what a kilogram holds in a state, and how dense it is.
+func (h *hand) holds(s thermo.Balance) string {
+	return fmt.Sprintf("h = %s kJ/kg, ρ = %s kg/m3", decimals(s.Enthalpy/1e3, h.places()), figures(s.Density, 6))
 }
 
 // conclude tells the duty with what the fluid leaves open.
@@ -52,7 +57,7 @@ func (h *hand) conclude(w io.Writer) {
 		parts += ", density to " + percent(2*density)
 	}
 	fmt.Fprintf(w, "The stream %s %s ± %s kW (%s).\n", verb, h.kilowatts(math.Abs(h.Duty), 0), h.kilowatts(h.fluidU(h.Duty), 0), parts)
-	fmt.Fprint(w, "± is twice the standard uncertainty of the fluid's properties; that of the instruments comes on top.\n")
+	fmt.Fprint(w, "± is twice the standard uncertainty of the fluid's properties; that of the\ninstruments comes on top.\n")
 }
 
 // fluidU is the expanded uncertainty of x by the fluid, in the unit of x.
@@ -85,7 +90,7 @@ func (h *hand) massFlow() string {
 		if h.stream.MeterAtOutlet {
 			at = "outlet"
 		}
-		return fmt.Sprintf("%v at the %s = %s m3/s × %s kg/m3 = %s", h.flow, at, si, figures(h.Density, 6), m)
+		return fmt.Sprintf("%v at the %s = %s m3/s\n             %s m3/s × %s kg/m3 = %s", h.flow, at, si, si, figures(h.Density, 6), m)
 	case loads.MolarFlow:
 		return fmt.Sprintf("%v = %s mol/s × %s kg/mol = %s", h.flow, si, figures(h.fluid.MolarMass(), 6), m)
 	}
