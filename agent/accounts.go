@@ -18,20 +18,20 @@ const wholeMinute = 54 * time.Second
 // beat at a time by one goroutine.
 type accounts struct {
 	cfg    loads.Config
-	digest [32]byte
+	rules  [32]byte
 	engine *loads.Engine
 	judges []*design.Judge
 	closed []loads.Minute
 }
 
-// newAccounts returns empty accounts of the plant that the site file with the given
-// digest describes.
-func newAccounts(cfg loads.Config, targets []design.Target, digest [32]byte) (*accounts, error) {
+// newAccounts returns empty accounts of the plant that the site file with the digest
+// site describes.
+func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*accounts, error) {
 	engine, err := loads.New(cfg)
 	if err != nil {
 		return nil, err
 	}
-	a := &accounts{cfg: cfg, digest: digest, engine: engine}
+	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), engine: engine}
 	for _, t := range targets {
 		a.judges = append(a.judges, design.NewJudge(t))
 	}
@@ -56,7 +56,7 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 // savedAccounts is the state of engine and judges; judges by the name of their
 // load.
 type savedAccounts struct {
-	Digest [32]byte // of the site file that the accounts were kept by
+	Rules  [32]byte // that the accounts were kept by; see rulesOf
 	Engine []byte
 	Judges map[string]savedJudge
 }
@@ -72,7 +72,7 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Digest: a.digest, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
+	s := savedAccounts{Rules: a.rules, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
 	}
@@ -83,7 +83,7 @@ func (a *accounts) save() ([]byte, error) {
 	return buf.Bytes(), nil
 }
 
-// restore takes up what save wrote, and reports whether it was by the same site file.
+// restore takes up what save wrote, and reports whether it was by the same rules.
 func (a *accounts) restore(state []byte) (same bool, err error) {
 	var s savedAccounts
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
@@ -94,5 +94,5 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 			j.Restore(was.Last, was.Minutes)
 		}
 	}
-	return s.Digest == a.digest, a.engine.Restore(s.Engine)
+	return s.Rules == a.rules, a.engine.Restore(s.Engine)
 }

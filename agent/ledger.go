@@ -109,9 +109,9 @@ func names[T any](all []T, name func(T) string) []string {
 
 // resume restores the last checkpoint and puts the beats since through again. A
 // load that the checkpoint does not know, because the site file left it out for a
-// while, goes on from its registers. Where the site file has changed since, the
-// beats are not computed again by rules that were not theirs: the registers stand
-// as they were last committed, and the readings are only held.
+// while, goes on from its registers. Where the site file or the program has changed
+// since, the beats are not computed again by rules that were not theirs: the
+// registers stand as they were last committed, and the readings are only held.
 func (l *ledger) resume() error {
 	known, err := l.totals()
 	if err != nil {

@@ -58,9 +58,11 @@ func (q *equation) phase(m *medium, x *State) (refused string, r Remark) {
 	return "", r
 }
 
-// condensing remarks on a wet gas whose outlet, or the coil, is within the margin of
-// the dew point: what condenses there gives heat up that is not in the duty. An inlet
-// below the dew point carries fog; where the humidity is measured it is never below.
+// condensing remarks on a wet gas whose outlet, or the coil, is below the dew point, or
+// colder than the inlet and within the margin of it: what condenses there gives heat
+// up that is not in the duty. A heater dries the air, however humid it comes in. An
+// inlet below the dew point carries fog; where the humidity is measured it is never
+// below.
 func (q *equation) condensing(m *medium, x *State, ends [2]end) Remark {
 	in, coldest := ends[0], ends[1]
 	if q.HasCoil {
@@ -74,7 +76,7 @@ func (q *equation) condensing(m *medium, x *State, ends [2]end) Remark {
 		return Remark{true, part + in.below() + " and carries fog"}
 	case coldest.T < coldest.lo:
 		return Remark{true, part + coldest.below() + ", and what condenses is not in the duty"}
-	case coldest.T < coldest.lo+q.Margin:
+	case coldest.T < coldest.lo+q.Margin && coldest.T < in.T:
 		return Remark{true, part + coldest.near(q.Margin, "the dew point", coldest.lo) + ", and what may condense is not in the duty"}
 	}
 	return Remark{}

@@ -71,6 +71,18 @@ func airAt(s, inC, outC, moisture, coilC float64) []Reading {
 	return append(at(s, 2, 273.15+inC, 273.15+outC), Reading{humidity, t, moisture}, Reading{coil, t, 273.15 + coilC})
 }
 
+// A heater that barely warms air near saturation dries it all the same, and a coil
+// warmer than the inlet cools nothing.
+func TestHeatedAirDoesNotCondense(t *testing.T) {
+	for _, hasCoil := range []bool{false, true} {
+		e := engine(t, airCooler(thermo.HumidityRatio, hasCoil))
+		e.Advance(Beat{airAt(0, 10.1, 10.6, 0.010, 10.9), through(1)}, nil)
+		if f := e.Snapshot().Loads[0].Figure; f.Fault != NoFault || f.Latent || f.Note != "" {
+			t.Errorf("coil %v: fault %v, latent %v, note %q", hasCoil, f.Fault, f.Latent, f.Note)
+		}
+	}
+}
+
 // 2 kg/s with 10 g/kg have cp = 1020 J/(kg K): 20 K are 40.8 kW of sensible heat, above
 // the dew point of 10 °C and below it.
 func TestSensiblePartOfAWetGas(t *testing.T) {
