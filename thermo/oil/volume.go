@@ -130,7 +130,7 @@ func correction(alpha, dT float64) float64 {
 }
 
 // compressibility in 1/Pa at T in K: API MPMS 11.2.1M (1984) for densities from 638 kg/m³
-// to 1074 kg/m³ and -30 °C to 90 °C (from memory), with t in °C:
+// to 1074 kg/m³ and -30 °C to 90 °C, here carried on beyond (from memory), with t in °C:
 //
 //	κ = 1e-9 exp(−1.62080 + 0.00021592 t + (0.87096 + 0.0042092 t) 1e6/ρ15²)
 func compressibility(rho15, T float64) float64 {

@@ -167,19 +167,27 @@ func TestGroupNames(t *testing.T) {
 	if g, err := Group("desel"); err == nil || !strings.Contains(err.Error(), `did you mean "fuel oil"`) {
 		t.Errorf("Group(desel) = %q, %v", g, err)
 	}
-	count := 0
-	for _, group := range Groups() {
-		for _, also := range GroupAliases(group) {
-			count++
-			g := &groups[slices.Index(Groups(), group)]
+	for group, want := range map[string][]string{
+		"gasoline":        {"motor gasoline", "motor spirit", "naphtha", "petrol"},
+		"transition":      nil,
+		"jet-kerosene":    {"aviation turbine fuel", "jet", "jet fuel", "kerosene", "kerosine"},
+		"fuel oil":        {"diesel", "diesel fuel", "diesel oil", "gas oil", "heating oil", "heavy fuel oil", "light fuel oil", "residual fuel oil"},
+		"crude oil":       {"crude"},
+		"lubricating oil": {"lube", "lube oil", "lubricant", "lubricating"},
+	} {
+		if got := GroupAliases(group); !slices.Equal(got, want) {
+			t.Errorf("other names of %s: %q, want %q", group, got, want)
+		}
+		g := &groups[slices.Index(Groups(), group)]
+		for _, also := range want {
 			f, err := Petroleum(rho15At(g, (g.minRho60+g.maxRho60)/2), 12, also)
 			if err != nil || !strings.HasPrefix(f.Name(), group+" ") {
 				t.Errorf("%q: %v, %v; want %s", also, f, err, group)
 			}
 		}
 	}
-	if count != len(alsoGroups) {
-		t.Errorf("%d other names, want %d", count, len(alsoGroups))
+	if len(groups) != 6 || len(alsoGroups) != 22 {
+		t.Errorf("%d groups, %d other names; want the 6 and 22 above", len(groups), len(alsoGroups))
 	}
 }
 
