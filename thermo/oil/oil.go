@@ -4,15 +4,15 @@
 // by Kesler and Lee (1976) where the Watson factor is known: it takes both, and its form is
 // what the handbooks of the trade went on with. Where only the density is known cp is by
 // Cragoe (1929), which asks for no more, and outside of its range by Kesler and Lee at a
-// Watson factor usual in the group, with a wide uncertainty. Density is by the volume correction of ASTM
-// D1250-80 (ISO 91) for the product's group, -18 °C to 150 °C.
+// Watson factor usual in the group, with a wide uncertainty. Density is by the volume
+// correction of ASTM D1250-80 (ISO 91) for the product's group, -18 °C to 150 °C.
 //
 // The four published correlations of cp differ by up to 6.4 % over the states of the tests,
 // whose Watson factors are those of the trade; over all densities from 640 kg/m³ to 1050
 // kg/m³ and Watson factors from 10 to 13 one of the others is up to 17.5 % away from Kesler
-// and Lee. The spread at a state, but at least 5 %, is the uncertainty there. The volume correction
-// repeats the outside figures to 5e-7, and its 15 °C and 60 °F forms agree within 9e-5 from
-// 0 °C to 100 °C above 640 kg/m³ (transition group 5e-4).
+// and Lee. The spread at a state, but at least 5 %, is the uncertainty there. The volume
+// correction repeats the outside figures to 5e-7, and its 15 °C and 60 °F forms agree
+// within 9e-5 from 0 °C to 100 °C above 640 kg/m³ (transition group 5e-4).
 //
 // Heat-transfer liquids are tables of their makers, between whose rows package table's
 // cubics hold; a vapour pressure gives the boiling point where one is printed. Drawn
@@ -29,7 +29,7 @@
 // Towards the ends of the range the term has another size. An enthalpy difference over a
 // change of pressure is off there, in kJ/kg per MPa, by up to 0.98 for the eutectic (at 397
 // °C, where the true term is as large as ours and of the other sign), 0.50 for the
-// terphenyl, 0.86 and 0.20 for mineral oils A and B, 0.05 to 0.1 for fuel oil and kerosene,
+// terphenyl, 0.86 and 0.20 for mineral oils A and B, 0.05 to 0.11 for fuel oil and kerosene,
 // 0.25 to 0.35 for gasoline. That cp falls with pressure, which is the other side of it, is
 // in the uncertainty of cp, and the compression of petroleum (API MPMS 11.2.1M) in that of
 // its density.

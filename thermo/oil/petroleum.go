@@ -39,9 +39,9 @@ type petroleum struct {
 // 1.05, it is that of Kesler and Lee at a Watson factor usual in the group, and what it
 // would be from 10 to 12.7 goes into the uncertainty. When it boils is not known either.
 //
-// groupName is the product group of ASTM D1250 (see [Groups] and [Group]). With "" it is that one of
-// the distillates into which the density falls, and what it would be by the other groups
-// goes into the uncertainty of density.
+// groupName is the product group of ASTM D1250 (see [Groups] and [Group]). With "" it is
+// that one of the distillates into which the density falls, and what it would be by the
+// other groups goes into the uncertainty of density.
 func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error) {
 	g, err := groupFor(density15, groupName)
 	if err != nil {
@@ -65,7 +65,9 @@ func Petroleum(density15, watson float64, groupName string) (thermo.Fluid, error
 	} else {
 		f.source += ", boiling by Lee and Kesler, AIChE Journal 21 (1975)"
 	}
-	f.stiff = thermo.NewIncompressible((minPetroleumT+f.maxT)/2, minPetroleumT, f.maxT, f.density)
+	_, hi := f.Span(maxPressure)
+	hi = min(hi, f.maxT)
+	f.stiff = thermo.NewIncompressible((minPetroleumT+hi)/2, minPetroleumT, hi, f.density)
 	return f, nil
 }
 

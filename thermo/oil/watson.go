@@ -26,8 +26,8 @@ func (f *petroleum) setHeat(g *group, sg, watson float64) error {
 	}
 	f.boiling = newBoiling(sg, watson)
 	f.minP, f.boilsBelow = f.boiling.pressure(minPetroleumT+boilingMargin), f.boiling.pressure(f.maxT+boilingMargin)
-	if !(f.minP < maxPressure) {
-		return fmt.Errorf("a Watson factor of %g makes it so light that it boils at %g kPa and %g °C already", watson, maxPressure/1e3, minPetroleumT-zeroC)
+	if f.boiling.pressure(fifteenC+boilingMargin) > maxPressure {
+		return fmt.Errorf("a Watson factor of %g makes it so light that it boils at %g kPa and 15 °C already", watson, maxPressure/1e3)
 	}
 	return nil
 }
