@@ -166,3 +166,13 @@ func TestRefusalNamesTheBound(t *testing.T) {
 		}
 	}
 }
+
+func TestFreezingRefusalNamesItsSource(t *testing.T) {
+	for u, why := range map[float64]string{0: "freezing point by ASHRAE", 0.01: "freezing point by ASHRAE, were the mixture weaker by twice the uncertainty of its strength"} {
+		_, err := mustNew(t, "ethylene glycol", 0.5, u).At(238, pressure)
+		e := new(thermo.RangeError)
+		if !errors.As(err, &e) || e.Why != why {
+			t.Errorf("known to %g: %v, want %q", u, err, why)
+		}
+	}
+}

@@ -81,12 +81,9 @@ func (s *solute) limit() string {
 func (s *solute) mix(name string, x, u float64) *mixture {
 	d := x - s.baseX
 	m := &mixture{
-		name: name, base: s.baseT, freezes: "freezing point", boiling: s.boils(x), deviations: s.deviation, u: u,
+		name: name, base: s.baseT, freezes: s.freezes(u), boiling: s.boils(x), deviations: s.deviation, u: u,
 		density: at(&s.density, d), densitySlope: slopeAt(&s.density, d),
 		cp: at(&s.cp, d), slope: slopeAt(&s.cp, d),
-	}
-	if u > 0 {
-		m.freezes = "freezing point, were the mixture weaker by twice the uncertainty of its strength"
 	}
 	m.bounds = thermo.Bounds{MinT: s.guard(max(0, x-2*u)), MaxT: s.maxT, MinP: m.boiling.minPressure(), MaxP: maxPressure}
 	m.boilsBelow = boilsBelow(m.boiling, s.maxT)

@@ -43,6 +43,18 @@ func (s *solute) guard(x float64) float64 {
 	return T
 }
 
+// freezes says what the guard is, of a mass fraction known to u.
+func (s *solute) freezes(u float64) string {
+	what := "freezing point"
+	if s.sooner != nil {
+		what += " by ASHRAE"
+	}
+	if u > 0 {
+		what += ", were the mixture weaker by twice the uncertainty of its strength"
+	}
+	return what
+}
+
 // at reduces a polynomial in temperature and concentration to one in
 // temperature, at the concentration d above its base.
 func at(c *[4][6]float64, d float64) cubic {
