@@ -22,9 +22,8 @@ type PressureLaw struct {
 	Within float64
 }
 
-// Compressed is a fluid that says which law it keeps. One that does not is held to that of
-// thermodynamics within a few per cent of v, which is room for a table or for two equations
-// that were joined.
+// Compressed is a fluid that says which law it keeps. One that does not keeps that of
+// thermodynamics.
 type Compressed interface {
 	Fluid
 	PressureLaw() PressureLaw
