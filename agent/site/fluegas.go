@@ -32,9 +32,9 @@ func (o object) fuel() (f gas.Fuel) {
 	case isGas && isElements:
 		elements.fault("stands beside fuel; a fuel is a gas by volume or its elements by mass")
 	case isGas:
-		f.Gas, _ = asGas.shares(species(), "shares by volume, such as CH4: 92 %, C2H6: 8 %")
+		f.Gas, _ = asGas.shares(species(), "shares by volume, such as {CH4: 92 %, C2H6: 8 %}")
 	case isElements:
-		shares, _ := elements.shares(keys["fluids.*.flue gas.elements"], "shares by mass, such as C: 86 %, H: 13 %, S: 1 %")
+		shares, _ := elements.shares(keys["fluids.*.flue gas.elements"], "shares by mass, such as {C: 86 %, H: 13 %, S: 1 %}")
 		f.Mass = gas.Elements{
 			C: shares["C"], H: shares["H"], O: shares["O"], N: shares["N"], S: shares["S"], Water: shares["water"], Ash: shares["ash"],
 		}

@@ -135,6 +135,9 @@ func (r *reader) instead(unknown *named.UnknownError) string {
 
 // declare builds a fluid, or returns nil where there is a fault.
 func (r *reader) declare(name string, v value) thermo.Fluid {
+	if r.namedAsKey(v) {
+		return nil
+	}
 	o := v.objectOf(fluidKeys())
 	var found []kind
 	for _, k := range kinds() {
@@ -159,6 +162,27 @@ func (r *reader) declare(name string, v value) thermo.Fluid {
 		}
 	}
 	return k.read(r, declaration{name, o.has[k.key].value, o})
+}
+
+// namedAsKey notes the fault of a declaration that has a name in the place of its kind,
+// such as {water: } or {glycol: 30 %}.
+func (r *reader) namedAsKey(v value) bool {
+	if v.node.Kind != yaml.MappingNode || len(v.node.Content) == 0 || slices.Contains(fluidKeys(), v.node.Content[0].Value) {
+		return false
+	}
+	key := value{v.scope, v.node.Content[0], join(v.path, v.node.Content[0].Value)}
+	name := key.node.Value
+	f, err := named.Lookup(name)
+	var unknown *named.UnknownError
+	switch {
+	case err == nil:
+		key.fault("%q is the name of a fluid, %s, and needs no declaration: write it without braces", clip(name), f.Name())
+		return true
+	case errors.As(err, &unknown) && unknown.Advice() != "":
+		key.fault("%s", unknown.Hint())
+		return true
+	}
+	return false
 }
 
 // goesWith lists the kinds beside which a key may stand.

@@ -100,6 +100,8 @@ func (s *scope) legible(text []byte) bool {
 
 var yamlError = regexp.MustCompile(`^yaml: (?:line (\d+): )?((?s).*)$`)
 
+const notYAML = "this is not YAML"
+
 // syntax adds an error of the YAML parser, which knows at best the line.
 func (s *scope) syntax(err error) {
 	line, text := 1, err.Error()
@@ -109,5 +111,5 @@ func (s *scope) syntax(err error) {
 			line = n
 		}
 	}
-	s.add(line, 1, "", "this is not YAML: %s", clip(strings.Join(strings.Fields(text), " ")))
+	s.add(line, 1, "", notYAML+": %s", clip(strings.Join(strings.Fields(text), " ")))
 }

@@ -1,6 +1,8 @@
 package site
 
 import (
+	"go.yaml.in/yaml/v3"
+
 	"heatreeve/thermo"
 	"heatreeve/thermo/gas"
 	"heatreeve/thermo/unit"
@@ -13,7 +15,7 @@ func species() []string { return append(gas.Species(), "dry air") }
 // which is by mole, unless by says that they are by mass; model says how the
 // properties are found, the best way for the gas and the state unless given.
 func mixture(_ *reader, d declaration) thermo.Fluid {
-	shares, ok := d.v.shares(species(), "shares by volume, such as N2: 79 %, O2: 21 %")
+	shares, ok := d.v.shares(species(), "shares by volume, such as {N2: 79 %, O2: 21 %}")
 	byMass, okBy := d.o.byMass()
 	model, okModel := d.o.model()
 	if !ok || !okBy || !okModel {
@@ -61,6 +63,10 @@ func (o object) model() (gas.Model, bool) {
 
 // shares reads parts of a whole by name; want tells how to write them.
 func (v value) shares(names []string, want string) (map[string]float64, bool) {
+	if v.node.Kind != yaml.MappingNode {
+		v.fault("want %s, found %s", want, v.kind())
+		return nil, false
+	}
 	o := v.objectOf(names)
 	all := make(map[string]float64, len(o.has))
 	for name, e := range o.has {

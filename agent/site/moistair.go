@@ -3,6 +3,8 @@ package site
 import (
 	"strings"
 
+	"go.yaml.in/yaml/v3"
+
 	"heatreeve/thermo"
 	"heatreeve/thermo/air"
 	"heatreeve/thermo/unit"
@@ -15,6 +17,10 @@ const standardPressure = 101325
 // The pressure is the barometer unless given, and without one the standard
 // atmosphere; a dew point and a humidity ratio need no temperature.
 func moistAir(r *reader, d declaration) thermo.Fluid {
+	if d.v.node.Kind != yaml.MappingNode {
+		d.v.fault("want how humid the air is, such as {relative humidity: 50 %%, at: 25 °C}, found %s", d.v.kind())
+		return nil
+	}
 	o := d.v.object("fluids.*.moist air")
 	before := len(d.v.faults)
 	var m thermo.Moisture

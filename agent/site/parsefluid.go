@@ -1,11 +1,15 @@
 package site
 
 import (
+	"regexp"
 	"strings"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/named"
 )
+
+// unspaced is a colon behind a key that YAML takes for a part of it.
+var unspaced = regexp.MustCompile(`[\p{L}\d]:[^\s/]`)
 
 // ParseFluid reads a fluid as it stands in a site file, for a command line: a name such
 // as "water" or "propylene glycol 32 %", or the YAML of a declaration such as
@@ -28,5 +32,10 @@ func ParseFluid(text string) (thermo.Fluid, error) {
 		}
 	}
 	s.faults.sort()
+	if unspaced.MatchString(text) {
+		for i := range s.faults {
+			s.faults[i].Message = strings.Replace(s.faults[i].Message, notYAML, notYAML+" (a colon is followed by a space)", 1)
+		}
+	}
 	return nil, s.faults
 }

@@ -73,7 +73,18 @@ func TestParseFluidFaults(t *testing.T) {
 		{"watr", `fluid "watr" is not known; near: "water"; known: `},
 		{"{gas: {N2: 79 %, n2: 21 %}}", `fluid:1:18: gas.n2: unknown key "n2"; near: "N2"`},
 		{"{gas: {N2: 79 %}}", "fluid:1:7: gas: the mole fractions add up to 0.79"},
-		{"{gas: {N2: 79 %}", "this is not YAML"},
+		{"{gas: {N2: 79 %}", "this is not YAML: "},
+		{"{gas:{N2:79 %,O2:21 %}}", "this is not YAML (a colon is followed by a space)"},
+		{"{gas: {methane: 100 %}}", `gas.methane: unknown key "methane"; near: "CH4"; allowed: N2`},
+		{"{gas: CH4 92 %}", "gas: want shares by volume, such as {N2: 79 %, O2: 21 %}, found text"},
+		{"{flue gas: {fuel: natural gas, excess air: 15 %}}", `fuel: want shares by volume, such as {CH4: 92 %, C2H6: 8 %}, found text`},
+		{"{flue gas: {fuel: {CH4: 100 %}, O2: 3 %}}", `near: "oxygen"`},
+		{"{food: milk}", "food: want shares by mass, such as {water: 87.3 %"},
+		{"{moist air: 50 %}", "want how humid the air is, such as {relative humidity: 50 %, at: 25 °C}, found text"},
+		{"{water: }", `"water" is the name of a fluid, water, and needs no declaration`},
+		{"{natural gas: {CH4: 100 %}}", `fluid "natural gas" is a mixture; declare the shares of yours, such as {gas: {`},
+		{"{glycol: 30 %}", `unknown key "glycol"; near: "ethylene glycol", "propylene glycol"; allowed: `},
+		{"{seawater: 40 %, model: ideal}", "goes not with seawater"},
 		{"{}", "says not what the fluid is; want one of: ethylene glycol"},
 		{"{a: 1}", `unknown key "a"`},
 		{"- a: b", "want a mapping of keys, found a list"},
@@ -82,6 +93,16 @@ func TestParseFluidFaults(t *testing.T) {
 		f, err := ParseFluid(tt.text)
 		if err == nil || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("ParseFluid(%q) = %v, %v; want ...%q...", tt.text, f, err, tt.want)
+		}
+	}
+}
+
+// One fault is told once.
+func TestParseFluidTellsAFaultOnce(t *testing.T) {
+	for _, text := range []string{"{moist air: 50 %}", "{gas: CH4 92 %}", "{food: milk}", "{flue gas: {fuel: natural gas, excess air: 15 %}}", "{water: }"} {
+		var faults Faults
+		if _, err := ParseFluid(text); !errors.As(err, &faults) || len(faults) != 1 {
+			t.Errorf("ParseFluid(%q) = %v; want one fault", text, err)
 		}
 	}
 }

@@ -48,7 +48,7 @@ func (v value) made(f thermo.Fluid, err error) thermo.Fluid {
 		return f
 	}
 	for text := range strings.Lines(err.Error()) {
-		v.fault("%s", strings.TrimSpace(text))
+		v.fault("%s", strings.TrimPrefix(strings.TrimSpace(text), v.path[strings.LastIndex(v.path, ".")+1:]+": "))
 	}
 	return nil
 }

@@ -84,7 +84,7 @@ func (v value) objectOf(allowed []string) object {
 	o := object{v, make(map[string]entry)}
 	for _, e := range v.entries() {
 		if !slices.Contains(allowed, e.name) {
-			e.key.fault("unknown key %q%s; allowed: %s", clip(e.name), nearOf(e.name, allowed), strings.Join(allowed, ", "))
+			e.key.fault("unknown key %q%s; allowed: %s", clip(e.name), meant(e.name, allowed), strings.Join(allowed, ", "))
 			continue
 		}
 		o.has[e.name] = e

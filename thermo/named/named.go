@@ -60,10 +60,18 @@ type UnknownError struct{ Name string }
 
 func (e *UnknownError) Error() string { return e.Hint() + "; known: " + strings.Join(Names(), ", ") }
 
+// Advice says what the name means in the trade and how that is written, or is "".
+func (e *UnknownError) Advice() string {
+	if t := trade(e.Name); t != nil {
+		return t.advice
+	}
+	return ""
+}
+
 // Hint is the error without the list of all names.
 func (e *UnknownError) Hint() string {
-	if t := trade(e.Name); t != nil && t.advice != "" {
-		return fmt.Sprintf("fluid %q %s", clip(e.Name), t.advice)
+	if advice := e.Advice(); advice != "" {
+		return fmt.Sprintf("fluid %q %s", clip(e.Name), advice)
 	}
 	say := fmt.Sprintf("fluid %q is not known", clip(e.Name))
 	if guess := e.Near(); len(guess) > 0 {
