@@ -8,6 +8,7 @@ import (
 	"strings"
 
 	"heatreeve/agent"
+	"heatreeve/thermo/unit/near"
 )
 
 // defaultListen keeps metrics on the machine unless told otherwise.
@@ -36,7 +37,7 @@ func (c *call) parseOptions() error {
 			c.help()
 			return err
 		case err != nil:
-			return wrongf("heatreeve %s: %w; see heatreeve %s --help", c.name, err, c.name)
+			return wrongf("heatreeve %s: %s; see heatreeve %s --help", c.name, c.unknownOption(err), c.name)
 		}
 		if rest = c.flags.Args(); len(rest) > 0 {
 			c.operands, rest = append(c.operands, rest[0]), rest[1:]
@@ -44,6 +45,36 @@ func (c *call) parseOptions() error {
 	}
 	c.operands = append(c.operands, last...)
 	return nil
+}
+
+// unknownOption tells the option that may have been meant, where err is about one that
+// there is not.
+func (c *call) unknownOption(err error) string {
+	name, ok := strings.CutPrefix(err.Error(), "flag provided but not defined: -")
+	if !ok {
+		return err.Error()
+	}
+	var all []string
+	c.flags.VisitAll(func(f *flag.Flag) { all = append(all, f.Name) })
+	text := fmt.Sprintf("unknown option --%s", strings.TrimPrefix(name, "-"))
+	if guess := intended(name, all); len(guess) > 0 {
+		return text + "; near: --" + strings.Join(guess, ", --")
+	}
+	return text + "; known: --" + strings.Join(all, ", --")
+}
+
+// intended are the known words of which one is the beginning, or a few keystrokes away.
+func intended(word string, known []string) []string {
+	var all []string
+	for _, k := range known {
+		if word != "" && strings.HasPrefix(k, word) {
+			all = append(all, k)
+		}
+	}
+	if len(all) > 0 {
+		return all
+	}
+	return near.Names(word, known)
 }
 
 // expect holds the operands to their number.

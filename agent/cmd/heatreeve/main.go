@@ -86,7 +86,11 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 			return status(c.invoke(ctx, args[1:], stdout, stderr), stderr)
 		}
 	}
-	return status(wrongf("unknown command %q; known: %s, help", args[0], strings.Join(known(), ", ")), stderr)
+	hint := ""
+	if guess := intended(args[0], known()); len(guess) > 0 {
+		hint = "; near: " + strings.Join(guess, ", ")
+	}
+	return status(wrongf("unknown command %q%s; known: %s, help", args[0], hint, strings.Join(known(), ", ")), stderr)
 }
 
 func known() []string {

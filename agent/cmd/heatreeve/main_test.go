@@ -44,7 +44,7 @@ func TestExitStatusAndMessages(t *testing.T) {
 		{"demo --help", exitGood, "--speed", ""},
 		{"version", exitGood, "heatreeve development", ""},
 		{"version extra", exitWrong, "", `unexpected "extra"`},
-		{"chekc", exitWrong, "", `unknown command "chekc"; known: run, check, demo, properties, duty, version, help`},
+		{"chekc", exitWrong, "", `unknown command "chekc"; near: check; known: run, check, demo, properties, duty, version, help`},
 		{"check", exitWrong, "", "the site file is missing"},
 		{"check " + example, exitGood, `good: "Brackwater Creamery", tags: 11, loads: 3`, ""},
 		{"check ../../../configs/tarnholt-heat-works.yaml", exitGood, "note: broker.ca: ", ""},

@@ -97,7 +97,10 @@ func (c *call) temperatures(text string) ([]float64, error) {
 	var all []float64
 	for part := range strings.SplitSeq(text, ",") {
 		q, err := c.quantity("temperature", strings.TrimSpace(part), unit.Temperature)
-		if err != nil {
+		switch {
+		case err != nil && strings.Contains(text, ","):
+			return nil, wrongf("%w; a comma parts temperatures, and the decimal separator is a point", err)
+		case err != nil:
 			return nil, err
 		}
 		all = append(all, q.SI())
@@ -124,7 +127,23 @@ func refusal(f thermo.Fluid, p float64, err error) error {
 	if !(lo < hi) {
 		return fmt.Errorf("%w; it is no %s at any temperature under %s kPa absolute", err, f.Phase(), figures(p/1e3, 6))
 	}
-	return fmt.Errorf("%w; allowed at %s kPa absolute: %s °C to %s °C", err, figures(p/1e3, 6), celsius(lo), celsius(hi))
+	return fmt.Errorf("%w; allowed at %s kPa absolute: %s °C to %s °C%s", err, figures(p/1e3, 6), celsius(lo), celsius(hi), otherPhase(f, out, p))
+}
+
+// otherPhase names the fluid that is the other phase of f, where that has the state.
+func otherPhase(f thermo.Fluid, out *thermo.RangeError, p float64) string {
+	name, ok := strings.CutPrefix(f.Name(), "liquid ")
+	if !ok {
+		name = "liquid " + name
+	}
+	other, err := named.Lookup(name)
+	if err != nil || out.Quantity != "temperature" {
+		return ""
+	}
+	if _, err := other.At(out.Value, p); err != nil {
+		return ""
+	}
+	return fmt.Sprintf("; there it is a %s, %q", other.Phase(), other.Name())
 }
 
 func celsius(T float64) string { return figures(T-273.15, 5) }
