@@ -131,7 +131,7 @@ func TestExamplesShowTheKeys(t *testing.T) {
 		"fluids.*.polynomial.pressure", "fluids.*.polynomial.max_pressure", "fluids.*.polynomial.freezing", "fluids.*.polynomial.boiling",
 		"loads.*.stream.dew_point", "loads.*.stream.wet_bulb", "loads.*.stream.humidity_ratio",
 		"fluids.*.moist air.dew point", "fluids.*.moist air.wet bulb", "fluids.*.moist air.humidity ratio", "fluids.*.moist air.pressure",
-		"fluids.*.food.fibre",
+		"fluids.*.food.fibre", "fluids.*.flue gas.wet oxygen",
 	}
 	for _, solute := range aqueous.Solutes() {
 		apart = append(apart, "fluids.*."+solute)

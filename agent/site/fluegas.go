@@ -8,7 +8,7 @@ import (
 
 // flueGas reads the gas of a complete combustion, such as
 // {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}. A fuel is by volume, its elements
-// are by mass; the air is told by its excess or by the oxygen left in the dry flue gas.
+// are by mass; the air is told by its excess or by the oxygen left in the flue gas.
 func flueGas(_ *reader, d declaration) thermo.Fluid {
 	o := d.v.object("fluids.*.flue gas")
 	before := len(d.v.faults)
@@ -44,18 +44,33 @@ func (o object) fuel() (f gas.Fuel) {
 	return f
 }
 
+// combustionAir reads what tells the air: its excess, or the oxygen left in the flue gas,
+// dry as an analyser behind a cooler has it or wet as a probe in the duct.
 func (o object) combustionAir() (c gas.Combustion) {
-	excess, isExcess := o.get("excess air")
-	oxygen, isOxygen := o.get("oxygen")
-	switch {
-	case isExcess && isOxygen:
-		oxygen.fault("stands beside excess air; one of the two tells the air")
-	case isExcess:
-		c.ExcessAir, _ = excess.within(0, 100, "0 % to 10 000 %", unit.Ratio)
-	case isOxygen:
-		c.DryO2, _ = oxygen.within(1e-6, 0.2, "more than 0 % up to 20 % of the dry gas", unit.Ratio)
-	default:
-		o.need("excess air", "the air beyond what the fuel needs, such as excess air: 15 %; or oxygen: 3 %, what is left in the dry flue gas")
+	found := ""
+	for _, m := range [...]struct {
+		key  string
+		to   *float64
+		lo   float64
+		hi   float64
+		span string
+	}{
+		{"excess air", &c.ExcessAir, 0, 100, "0 % to 10 000 %"},
+		{"oxygen", &c.DryO2, 1e-6, 0.2, "more than 0 % up to 20 % of the dry gas"},
+		{"wet oxygen", &c.WetO2, 1e-6, 0.2, "more than 0 % up to 20 % of the wet gas"},
+	} {
+		v, ok := o.get(m.key)
+		switch {
+		case !ok:
+		case found != "":
+			v.fault("stands beside %s; one of them tells the air", found)
+		default:
+			found = m.key
+			*m.to, _ = v.within(m.lo, m.hi, m.span, unit.Ratio)
+		}
+	}
+	if found == "" {
+		o.need("excess air", "the air beyond what the fuel needs, such as excess air: 15 %; or what is left of its oxygen, oxygen: 3 % of the dry flue gas or wet oxygen: 3 % of the flue gas as it is")
 	}
 	if v, ok := o.get("air humidity"); ok {
 		if q, ok := v.quantity(unit.Ratio); ok {

@@ -13,7 +13,7 @@ var keys = map[string][]string{
 	"loads.*.stream": {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes",
 		"relative_humidity", "dew_point", "wet_bulb", "humidity_ratio", "coil", "margin", "idle_below"},
 	"loads.*.design":                  {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
-	"fluids.*.flue gas":               {"fuel", "elements", "excess air", "oxygen", "air humidity"},
+	"fluids.*.flue gas":               {"fuel", "elements", "excess air", "oxygen", "wet oxygen", "air humidity"},
 	"fluids.*.flue gas.elements":      {"C", "H", "O", "N", "S", "water", "ash"},
 	"fluids.*.food":                   {"water", "fat", "protein", "carbohydrate", "fibre", "ash"},
 	"fluids.*.petroleum":              {"density", "api gravity", "watson", "group"},

@@ -13,7 +13,7 @@ var otherwise = map[string][]string{
 	"methane": {"CH4"}, "ethane": {"C2H6"}, "propane": {"C3H8"}, "butane": {"C4H10"}, "n-butane": {"C4H10"}, "pentane": {"C5H12"}, "n-pentane": {"C5H12"},
 	"ethylene": {"C2H4"}, "ethene": {"C2H4"}, "ammonia": {"NH3"}, "sulfur dioxide": {"SO2"}, "sulphur dioxide": {"SO2"}, "hydrogen sulfide": {"H2S"},
 	"hydrogen sulphide": {"H2S"}, "chlorine": {"Cl2"}, "water": {"H2O"}, "steam": {"H2O"}, "water vapour": {"H2O"}, "moisture": {"H2O", "water"}, "air": {"dry air"},
-	"carbon": {"C"}, "sulfur": {"S"}, "sulphur": {"S"}, "o2": {"oxygen", "O2"}, "excess": {"excess air"}, "lambda": {"excess air"}, "humidity": {"air humidity", "relative humidity"},
+	"carbon": {"C"}, "sulfur": {"S"}, "sulphur": {"S"}, "o2": {"oxygen", "wet oxygen", "O2"}, "excess": {"excess air"}, "lambda": {"excess air"}, "humidity": {"air humidity", "relative humidity"},
 	"rh": {"relative humidity"}, "temperature": {"at"}, "w": {"humidity ratio"}, "carbohydrates": {"carbohydrate"}, "sugar": {"carbohydrate"}, "lactose": {"carbohydrate"},
 	"fiber": {"fibre"}, "minerals": {"ash"}, "salt": {"ash", "sodium chloride"}, "solids": {"carbohydrate"}, "api": {"api gravity"}, "rho": {"density"}, "kw": {"watson"},
 	"watson k": {"watson"}, "watson factor": {"watson"}, "glycol": {"ethylene glycol", "propylene glycol"}, "meg": {"ethylene glycol"}, "mpg": {"propylene glycol"},

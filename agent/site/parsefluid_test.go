@@ -12,7 +12,7 @@ import (
 )
 
 // The shares of the mixtures are worked by hand: 23.2 % of 31.999 g/mol beside 76.8 % of
-// 28.013 g/mol; CH4 + 2 O2 with the air that comes along; W of half of the saturation
+// 28.013 g/mol; CH4 + 2 O2 with the air that comes along, and with a tenth more of it; W of half of the saturation
 // pressure 3.1693 kPa at 25 °C, and of 1.4026 kPa at 12 °C, under 101.325 kPa.
 func TestParseFluid(t *testing.T) {
 	for _, tt := range []struct{ text, name string }{
@@ -23,6 +23,7 @@ func TestParseFluid(t *testing.T) {
 		{"{gas: {N2: 100 %}}", "nitrogen"},
 		{"{gas: {N2: 76.8 %, O2: 23.2 %}, by: mass, model: ideal}", "gas: {N2: 79.09 %, O2: 20.91 %}"},
 		{"{flue gas: {fuel: {CH4: 100 %}, excess air: 0 %}}", "gas: {N2: 70.68 %, H2O: 18.96 %, CO2: 9.51 %, Ar: 0.8477 %}"},
+		{"{flue gas: {fuel: {CH4: 100 %}, wet oxygen: 1.73877 %}}", "gas: {N2: 71.3 %, H2O: 17.39 %, CO2: 8.723 %, O2: 1.739 %, Ar: 0.8551 %}"},
 		{"{moist air: {humidity ratio: 8 g/kg}}", "moist air 8 g/kg"},
 		{"{moist air: {relative humidity: 50 %, at: 25 °C}}", "moist air 9.881 g/kg"},
 		{"{moist air: {dew point: 12 °C}}", "moist air 8.73 g/kg"},

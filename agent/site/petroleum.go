@@ -1,6 +1,8 @@
 package site
 
 import (
+	"fmt"
+
 	"heatreeve/thermo"
 	"heatreeve/thermo/oil"
 	"heatreeve/thermo/unit"
@@ -25,6 +27,9 @@ func petroleum(_ *reader, d declaration) thermo.Fluid {
 		return nil
 	}
 	f, err := oil.Petroleum(density, watson, group)
+	if err != nil && group != "" {
+		err = fmt.Errorf("%w; without a group the density tells it", err)
+	}
 	return d.v.made(f, err)
 }
 
