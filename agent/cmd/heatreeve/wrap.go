@@ -10,10 +10,10 @@ const width = 80
 
 // wrapped breaks text between words, so that no line is wider than a terminal; the
 // lines after the first stand behind indent.
-func wrapped(text, indent string) string { return lines("", indent, fields(text)) }
+func wrapped(text, indent string) string { return set("", indent, fields(text)) }
 
 // indented is wrapped with the first line behind indent as well.
-func indented(text, indent string) string { return lines(indent, indent, fields(text)) }
+func indented(text, indent string) string { return set(indent, indent, fields(text)) }
 
 // fields are the words of a text; a percent or degree sign stays with its number.
 func fields(text string) []string {
@@ -28,9 +28,9 @@ func fields(text string) []string {
 	return all
 }
 
-// lines sets parts one after the other behind first, and begins another line behind
+// set puts parts one after the other behind first, and begins another line behind
 // indent where one is full.
-func lines(first, indent string, parts []string) string {
+func set(first, indent string, parts []string) string {
 	var text strings.Builder
 	text.WriteString(first)
 	column := utf8.RuneCountInString(first)
@@ -57,5 +57,5 @@ func listing(names []string, indent string) string {
 	for i, name := range names {
 		parts[i] = name + ","
 	}
-	return strings.TrimSuffix(lines(indent, indent, parts), ",")
+	return strings.TrimSuffix(set(indent, indent, parts), ",")
 }
