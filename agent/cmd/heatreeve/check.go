@@ -18,7 +18,7 @@ func runCheck(_ context.Context, c *call) error {
 	}
 	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.operands[0], s.Name, len(s.Tags), len(s.Loads))
 	for _, l := range s.Loads {
-		fmt.Fprintln(c.stdout, lines("  ", "      ", fields(fmt.Sprintf("%s: %s, %s", l.Name, l.Stream.FluidName, l.Stream.Fluid.Source()))))
+		fmt.Fprintln(c.stdout, set("  ", "      ", fields(fmt.Sprintf("%s: %s, %s", l.Name, l.Stream.FluidName, l.Stream.Fluid.Source()))))
 	}
 	for _, note := range notes(s) {
 		fmt.Fprintln(c.stdout, wrapped("note: "+note, "  "))

@@ -139,7 +139,7 @@ func (c command) usageLines(first, indent string) string {
 		}
 		parts = append(parts, word)
 	}
-	return lines(first, indent, parts)
+	return set(first, indent, parts)
 }
 
 func usage(w io.Writer) {
