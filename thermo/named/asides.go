@@ -31,12 +31,16 @@ func called(of string, names ...string) (as []aside) {
 }
 
 func refrigerantNumbers() (as []aside) {
+	liquids := make(map[string]string)
+	for _, w := range liquefied() {
+		liquids[w.also[0]] = w.name
+	}
 	for _, r := range []aside{
-		{"R717", "NH3"}, {"R744", "CO2"}, {"R290", "C3H8"}, {"R600", "n-butane"}, {"R601", "n-pentane"}, {"R170", "C2H6"}, {"R50", "CH4"}, {"R1150", "C2H4"},
+		{"R717", "NH3"}, {"R744", "CO2"}, {"R290", "C3H8"}, {"R600", "C4H10"}, {"R601", "C5H12"}, {"R170", "C2H6"}, {"R50", "CH4"}, {"R1150", "C2H4"},
 		{"R728", "N2"}, {"R732", "O2"}, {"R740", "Ar"}, {"R702", "H2"}, {"R704", "He"}, {"R764", "SO2"}, {"R744A", "N2O"},
 	} {
 		as = append(as, r)
-		if liquid := "liquid " + r.of; slices.ContainsFunc(liquefied(), func(w *word) bool { return fold(w.name) == fold(liquid) || fold(w.also[0]) == fold(liquid) }) {
+		if liquid, ok := liquids["liquid "+r.of]; ok {
 			as = append(as, aside{"liquid " + r.name, liquid})
 		}
 	}

@@ -130,6 +130,7 @@ func TestTermsOfTheTrade(t *testing.T) {
 		{"cream 30 %", "{food: {"}, {"30 % cream", "{food: {"}, {"milk 3.5 % fat", "{food: {"}, {"methane 92 %", "{gas: {"}, {"ammonia water", `write "ammonia 20 %"`},
 		{"propylene glycol 32 % w/v", "mass per volume"}, {"K-formate", `K-formate wants its strength as well: write "K-formate 20 %"`}, {"HFO", "HFO wants its density"},
 		{"water at 80 °C", `"at 80 °C" is no part of a fluid's name: "water" is the fluid`}, {"steam 10 bar", `"10 bar" is no part of a fluid's name`}, {"water/glycol 70/30", `near: "ethylene glycol 20 %"`},
+		{"steel 304", `near: "carbon steel", "stainless steel 304"`}, {"whole milk 3.5", `near: "whole milk"`},
 		{"oil 870 kg/m3", `near: "petroleum 870 kg/m3"`}, {"moist air 50 % RH", "{moist air: {relative humidity: 50 %"}, {"propylene glycol % 32", `near: "propylene glycol 20 %"`},
 	} {
 		f, err := Lookup(tt.name)
@@ -250,7 +251,9 @@ func FuzzLookup(f *testing.F) {
 	for _, n := range Names() {
 		f.Add(n)
 	}
-	f.Add("propylene glycol -1e300 vol%")
+	for _, s := range []string{"propylene glycol -1e300 vol%", "30 % v/v propylene glycol", "API 35, Watson K 11.8", "water at 80 °C", "aqua ammonia (25 %)", "R717", "milk 2 %"} {
+		f.Add(s)
+	}
 	f.Fuzz(func(t *testing.T, name string) {
 		fluid, err := Lookup(name)
 		switch {

@@ -5,6 +5,7 @@ import (
 	"regexp"
 	"strings"
 	"unicode"
+	"unicode/utf8"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
@@ -22,14 +23,14 @@ func read(name string) (reading, bool) {
 	if w, ok := pure(name); ok {
 		return reading{w, ""}, true
 	}
-	if w, ok := solute(name); ok {
+	if w, ok := strong(name); ok {
 		return reading{w, ""}, true
 	}
 	for i, r := range name {
 		if !unicode.IsDigit(r) && !isSign(r, name[:i]) {
 			continue
 		}
-		if w, ok := solute(name[:i]); ok {
+		if w, ok := strong(name[:i]); ok {
 			return reading{w, unwrap(name[i:])}, true
 		}
 	}
@@ -44,7 +45,7 @@ func readBehind(name string) (reading, bool) {
 	}
 	for i, r := range name {
 		if unicode.IsLetter(r) {
-			if w, ok := solute(name[i:]); ok {
+			if w, ok := strong(name[i:]); ok {
 				return reading{w, strings.TrimSuffix(strings.TrimSpace(name[:i]), " of")}, true
 			}
 		}
@@ -72,8 +73,8 @@ func pure(name string) (*word, bool) {
 	return nil, false
 }
 
-// solute finds a word that wants a strength, though its name may tell the water as well.
-func solute(name string) (*word, bool) {
+// strong finds a word that wants a strength, though its name may tell the water as well.
+func strong(name string) (*word, bool) {
 	key := strings.TrimRight(fold(name), ",;:(")
 	if w, ok := index().strong[key]; ok {
 		return w, true
@@ -90,9 +91,13 @@ func solute(name string) (*word, bool) {
 	return nil, false
 }
 
-// readSet finds a fluid of one composition that stands beside a quantity all the same.
+// readSet finds a fluid of one composition that stands beside a quantity all the same. A
+// bare number may be that of an alloy.
 func readSet(name string) (f thermo.Fluid, tail string, ok bool) {
 	for _, cut := range strengths.FindAllStringIndex(name, -1) {
+		if last, _ := utf8.DecodeLastRuneInString(strings.TrimSpace(name[cut[0]:cut[1]])); unicode.IsDigit(last) {
+			continue
+		}
 		bare := strings.TrimRight(strings.TrimSpace(name[:cut[0]]+name[cut[1]:]), ",;:(")
 		if w, ok := pure(bare); ok {
 			f, err := w.make(strength{})
