@@ -8,7 +8,6 @@ import (
 	"strings"
 
 	"heatreeve/agent"
-	"heatreeve/thermo/unit/near"
 )
 
 // defaultListen keeps metrics on the machine unless told otherwise.
@@ -63,18 +62,9 @@ func (c *call) unknownOption(err error) string {
 	return text + "; known: --" + strings.Join(all, ", --")
 }
 
-// intended are the known words of which one is the beginning, or a few keystrokes away.
+// intended are the known words of which one is the beginning.
 func intended(word string, known []string) []string {
-	var all []string
-	for _, k := range known {
-		if word != "" && strings.HasPrefix(k, word) {
-			all = append(all, k)
-		}
-	}
-	if len(all) > 0 {
-		return all
-	}
-	return near.Names(word, known)
+	return slices.DeleteFunc(slices.Clone(known), func(k string) bool { return word == "" || !strings.HasPrefix(k, word) })
 }
 
 // expect holds the operands to their number.
