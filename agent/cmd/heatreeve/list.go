@@ -31,7 +31,7 @@ func tellFluids(w io.Writer, asJSON bool) error {
 		}
 		return printJSON(w, all)
 	}
-	fmt.Fprint(w, "fluid, with its range at absolute pressure; where N stands for a number, of the\none in brackets\n      phase; source\n\n")
+	fmt.Fprint(w, "Each fluid with its range; pressures are absolute. N stands for a number, and\nthe range is that of the number in brackets. Phase and source stand below.\n\n")
 	form := 0
 	for _, e := range entries {
 		form = max(form, utf8.RuneCountInString(e.Form))
