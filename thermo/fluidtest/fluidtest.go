@@ -1,4 +1,5 @@
-// Package fluidtest holds the one suite that every fluid has to pass.
+// Package fluidtest holds the one suite that every fluid has to pass, and what the tests of the
+// families have in common: tables of figures, answers of outside programs, deviations, timing.
 package fluidtest
 
 import (
