@@ -12,7 +12,7 @@ type aside struct{ name, of string }
 
 func asides() []aside {
 	return slices.Concat(
-		called("water", "hot water", "cold water", "warm water", "chilled water", "cooling water", "ice water", "tap water", "fresh water", "process water",
+		called("water", "hot water", "pressurised hot water", "pressurised water", "cold water", "warm water", "chilled water", "cooling water", "ice water", "tap water", "fresh water", "process water",
 			"feed water", "boiler feed water", "boiler water", "district heating water", "demineralised water", "deionised water", "condensate", "R718"),
 		called("dry air", "compressed air", "instrument air", "hot air", "combustion air", "R729"),
 		called("potassium formate", "K-formate"), called("potassium acetate", "K-acetate"), called("potassium carbonate", "potash"),

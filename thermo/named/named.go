@@ -75,9 +75,9 @@ func (e *UnknownError) Hint() string {
 	}
 	say := fmt.Sprintf("fluid %q is not known", clip(e.Name))
 	if guess := e.Near(); len(guess) > 0 {
-		say += "; near: " + quoted(guess)
+		return say + "; near: " + quoted(guess)
 	}
-	return say
+	return say + "; one of your own is declared by its figures, {table: ...} or {polynomial: ...}"
 }
 
 // Names lists every name once, in the order of [List]; one that wants a strength has an
@@ -104,7 +104,7 @@ func fold(name string) string {
 }
 
 // alike maps spellings of two countries to one.
-var alike = strings.NewReplacer("sulph", "sulf", "vapour", "vapor")
+var alike = strings.NewReplacer("sulph", "sulf", "vapour", "vapor", "ized", "ised")
 
 func quoted(names []string) string {
 	qs := make([]string, len(names))

@@ -78,7 +78,7 @@ func TestLookupIsLenient(t *testing.T) {
 // Names and spellings as they are in use in plants.
 func TestNamesOfTheTrade(t *testing.T) {
 	for _, tt := range []struct{ written, name string }{
-		{"H2O", "water"}, {"hot water", "water"}, {"Chilled Water", "water"}, {"cooling water", "water"}, {"feedwater", "water"}, {"condensate", "water"}, {"R718", "water"},
+		{"H2O", "water"}, {"hot water", "water"}, {"Chilled Water", "water"}, {"cooling water", "water"}, {"feedwater", "water"}, {"demineralized water", "water"}, {"Pressurised hot water", "water"}, {"condensate", "water"}, {"R718", "water"},
 		{"compressed air", "dry air"}, {"R717", "ammonia"}, {"R-744", "carbon dioxide"}, {"R290", "propane"}, {"r600", "n-butane"}, {"R728", "nitrogen"},
 		{"R50", "methane"}, {"R170", "ethane"}, {"liquid R717", "liquid ammonia"}, {"liquid R600", "liquid n-butane"}, {"LIN", "liquid nitrogen"},
 		{"30% propylene glycol", "propylene glycol 30 %"}, {"40 % MEG", "ethylene glycol 40 %"}, {"30 vol % ethanol", "ethanol 30 vol %"}, {"35 g/kg seawater", "seawater 35 g/kg"},
@@ -131,6 +131,7 @@ func TestTermsOfTheTrade(t *testing.T) {
 		{"propylene glycol 32 % w/v", "mass per volume"}, {"K-formate", `K-formate wants its strength as well: write "K-formate 20 %"`}, {"HFO", "HFO wants its density"},
 		{"water at 80 °C", `"at 80 °C" is no part of a fluid's name: "water" is the fluid`}, {"steam 10 bar", `"10 bar" is no part of a fluid's name`}, {"water/glycol 70/30", `near: "ethylene glycol 20 %"`},
 		{"steel 304", `near: "carbon steel", "stainless steel 304"`}, {"whole milk 3.5", `near: "whole milk"`},
+		{"ethylene glycol 50/50", `"50/50" does not say which part is whose`}, {"demineralized woter", `near: "demineralised water"`},
 		{"oil 870 kg/m3", `near: "petroleum 870 kg/m3"`}, {"moist air 50 % RH", "{moist air: {relative humidity: 50 %"}, {"propylene glycol % 32", `near: "propylene glycol 20 %"`},
 	} {
 		f, err := Lookup(tt.name)
@@ -201,7 +202,7 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"Glycol 30 %", []string{`near: "ethylene glycol 30 %", "propylene glycol 30 %"; known`}},
 		{"fuel oil", []string{`fuel oil wants its density at 15 °C as well: write "fuel oil 900 kg/m3"`}},
 		{"nitrogn", []string{`near: "nitrogen"`}},
-		{"unobtainium", []string{`"unobtainium" is not known; known: water`}},
+		{"unobtainium", []string{`"unobtainium" is not known; one of your own is declared by its figures, {table: ...} or {polynomial: ...}; known: water`}},
 		{"propylene glycol", []string{"wants its strength as well", `write "propylene glycol `}},
 		{"propylene glycol 32", []string{"propylene glycol: ", "unit is missing", `write "propylene glycol `}},
 		{"propylene glycol 32,5 %", []string{"decimal separator must be a point"}},
@@ -211,7 +212,7 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"water 32 %", []string{"water is of one composition and takes no strength", `found "32 %"`}},
 		{"calcium chloride 20 vol %", []string{"calcium chloride: ", `"20 vol %" is by volume, and it is known by mass only`}},
 		{"moist air 50 %", []string{"want its humidity ratio in g/kg"}},
-		{strings.Repeat("x", 1000), []string{`xxx..." is not known; known`}},
+		{strings.Repeat("x", 1000), []string{`xxx..." is not known; one`}},
 	} {
 		f, err := Lookup(tt.name)
 		if err == nil {

@@ -29,6 +29,9 @@ var mixed = regexp.MustCompile(`(?i)%\s*\(?[wm]/v\)?\s*$`)
 // relative is what tells that percents are of a relative humidity.
 var relative = regexp.MustCompile(`(?i)%\s*(?:RH|r\.h\.|relative humidity)\s*$`)
 
+// parts are two shares, such as 30/70.
+var parts = regexp.MustCompile(`^\s*\d[\d.]*\s*[/:]\s*\d`)
+
 func (w *word) withStrength(text string) (thermo.Fluid, error) {
 	var s strength
 	var err error
@@ -57,6 +60,8 @@ func (w *word) share(text string) (s strength, err error) {
 		s.byVolume = strings.Contains("volume abv v/v", strings.ToLower(m[2]+m[3]))
 	}
 	switch {
+	case parts.MatchString(text):
+		return s, fmt.Errorf("%q does not say which part is whose, nor of what", clip(text))
 	case mixed.MatchString(text):
 		return s, fmt.Errorf("%q is mass per volume, and no share of the mass or of the volume", clip(text))
 	case s.byVolume && !w.volume:
