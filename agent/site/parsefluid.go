@@ -16,8 +16,10 @@ var unspaced = regexp.MustCompile(`[\p{L}\d]:[^\s/]`)
 // "{gas: {N2: 79 %, O2: 21 %}}". The error is a [Faults] where it is YAML. A gauge
 // pressure is refused: there is no barometer.
 func ParseFluid(text string) (thermo.Fluid, error) {
-	if !strings.ContainsAny(text, "{:\n") {
-		return named.Lookup(text)
+	if !strings.ContainsAny(text, "{\n") {
+		if f, err := named.Lookup(text); err == nil || !strings.Contains(text, ":") {
+			return f, err
+		}
 	}
 	s := &scope{file: "fluid"}
 	if root := s.document([]byte(text)); len(s.faults) == 0 {

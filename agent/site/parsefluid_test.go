@@ -20,6 +20,8 @@ func TestParseFluid(t *testing.T) {
 		{"Propylene glycol 32 %", "propylene glycol 32 %"},
 		{"{propylene glycol: 32 %, uncertainty: 0.6 %}", "propylene glycol 32 %"},
 		{"{propylene glycol: 30 %, by: volume}", "propylene glycol 30 vol %"},
+		{"MEG: 40 %", "ethylene glycol 40 %"},
+		{"crude oil, API: 31", "crude oil 870.304 kg/m³"},
 		{"{gas: {N2: 100 %}}", "nitrogen"},
 		{"{gas: {N2: 76.8 %, O2: 23.2 %}, by: mass, model: ideal}", "gas: {N2: 79.09 %, O2: 20.91 %}"},
 		{"{flue gas: {fuel: {CH4: 100 %}, excess air: 0 %}}", "gas: {N2: 70.68 %, H2O: 18.96 %, CO2: 9.51 %, Ar: 0.8477 %}"},
