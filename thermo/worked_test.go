@@ -1,15 +1,13 @@
 package thermo_test
 
 import (
-	"encoding/csv"
-	"fmt"
 	"math"
 	"os"
-	"strconv"
 	"testing"
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/air"
+	"heatreeve/thermo/fluidtest"
 	"heatreeve/thermo/gas"
 	"heatreeve/thermo/named"
 	"heatreeve/thermo/oil"
@@ -21,20 +19,21 @@ import (
 // sources stand in the rows, and holds it to the row's own tolerance.
 func TestWorkedExamples(t *testing.T) {
 	fluids := workedFluids(t)
-	examples := records(t, "worked-examples.csv")
+	examples := fluidtest.Rows(t, os.DirFS("testdata"), "worked-examples.csv")
 	if len(examples) < 56 {
 		t.Errorf("%d examples, want 56", len(examples))
 	}
 	ran := 0
-	for _, r := range examples {
-		t.Run(r.text["id"], func(t *testing.T) {
-			f, err := fluidOf(fluids, r.text["fluid"])
+	for _, row := range examples {
+		r := example{row}
+		t.Run(r.Text("id"), func(t *testing.T) {
+			f, err := fluidOf(fluids, r.Text("fluid"))
 			if err != nil {
 				t.Fatal(err)
 			}
 			mass := r.mass(t, f)
-			near(t, "mass", mass, r.number(t, "mass"), r.number(t, "tol_rel"))
-			near(t, "heat", r.heat(t, f, mass), r.number(t, "expected"), r.number(t, "tol_rel"))
+			near(t, "mass", mass, r.Number("mass"), r.Number("tol_rel"))
+			near(t, "heat", r.heat(t, f, mass), r.Number("expected"), r.Number("tol_rel"))
 			ran++
 		})
 	}
@@ -50,13 +49,16 @@ func near(t *testing.T, what string, got, want, tolerance float64) {
 	}
 }
 
+// example is a row of the file.
+type example struct{ fluidtest.Row }
+
 // heat of the example between its two temperatures.
-func (r record) heat(t *testing.T, f thermo.Fluid, mass float64) float64 {
+func (r example) heat(t *testing.T, f thermo.Fluid, mass float64) float64 {
 	t.Helper()
-	T1, T2, p := r.number(t, "T_in_K"), r.number(t, "T_out_K"), r.number(t, "p_Pa")
+	T1, T2, p := r.Number("T_in_K"), r.Number("T_out_K"), r.Number("p_Pa")
 	var q float64
 	var err error
-	switch kind := r.text["kind"]; kind {
+	switch kind := r.Text("kind"); kind {
 	case "stream":
 		q, err = thermo.StreamHeat(f, mass, T1, p, T2, p)
 	case "batch":
@@ -76,19 +78,19 @@ func (r record) heat(t *testing.T, f thermo.Fluid, mass float64) float64 {
 }
 
 // mass in kg, or flow in kg/s, of the amount as the example states it.
-func (r record) mass(t *testing.T, f thermo.Fluid) float64 {
+func (r example) mass(t *testing.T, f thermo.Fluid) float64 {
 	t.Helper()
 	const normal, standard, fahrenheit60 = 273.15, 288.15, (60 + 459.67) / 1.8
 	density := func() float64 {
-		T := r.number(t, "T_in_K")
-		if r.text["meter"] == "outlet" {
-			T = r.number(t, "T_out_K")
+		T := r.Number("T_in_K")
+		if r.Text("meter") == "outlet" {
+			T = r.Number("T_out_K")
 		}
 		return r.at(t, f, T).Density
 	}
 	ideal := func(T float64) float64 { return 101325 / (thermo.R * T) * f.MolarMass() } // kg/m³
-	n := r.number(t, "flow")
-	switch unit := r.text["flow_unit"]; unit {
+	n := r.Number("flow")
+	switch unit := r.Text("flow_unit"); unit {
 	case "kg/s", "kg":
 		return n
 	case "kg/min":
@@ -131,9 +133,9 @@ func (r record) mass(t *testing.T, f thermo.Fluid) float64 {
 	}
 }
 
-func (r record) at(t *testing.T, f thermo.Fluid, T float64) thermo.Properties {
+func (r example) at(t *testing.T, f thermo.Fluid, T float64) thermo.Properties {
 	t.Helper()
-	s, err := f.At(T, r.number(t, "p_Pa"))
+	s, err := f.At(T, r.Number("p_Pa"))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -185,48 +187,4 @@ func moist(kind thermo.MoistureKind, value, T float64) (thermo.Fluid, error) {
 		return nil, err
 	}
 	return air.Moist(w)
-}
-
-// record is a line of a table in testdata, by column name.
-type record struct{ text map[string]string }
-
-func (r record) number(t *testing.T, column string) float64 {
-	t.Helper()
-	v, err := strconv.ParseFloat(r.text[column], 64)
-	if err != nil {
-		t.Fatalf("%v: column %q: %v", r.text, column, err)
-	}
-	return v
-}
-
-func records(t *testing.T, name string) []record {
-	t.Helper()
-	out, err := readRecords("testdata/" + name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return out
-}
-
-func readRecords(path string) ([]record, error) {
-	file, err := os.Open(path)
-	if err != nil {
-		return nil, err
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		return nil, fmt.Errorf("%s: %w", path, err)
-	}
-	var out []record
-	for _, line := range lines[1:] {
-		r := record{map[string]string{}}
-		for k, head := range lines[0] {
-			r.text[head] = line[k]
-		}
-		out = append(out, r)
-	}
-	return out, nil
 }

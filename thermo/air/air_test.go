@@ -1,14 +1,12 @@
 package air
 
 import (
-	"encoding/csv"
 	"errors"
 	"fmt"
 	"maps"
 	"math"
 	"os"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
 
@@ -40,30 +38,12 @@ type row struct {
 
 func rows(t *testing.T) []row {
 	t.Helper()
-	file, err := os.Open("testdata/humid-air.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
 	var out []row
-	for _, l := range lines[1:] {
-		var r row
-		for k, to := range []*float64{&r.T, &r.rh, &r.p, &r.w, &r.h, &r.v, &r.rho, &r.cp, &r.iapwsRho, &r.iapwsCp} {
-			if l[k] == "" {
-				*to = math.NaN() // IAPWS has no row for dry air
-				continue
-			}
-			if *to, err = strconv.ParseFloat(l[k], 64); err != nil {
-				t.Fatalf("row %q: %v", l, err)
-			}
-		}
-		out = append(out, r)
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "humid-air.csv") {
+		out = append(out, row{
+			T: r.Number("T_K"), rh: r.Number("RH"), p: r.Number("p_Pa"), w: r.Number("W"), h: r.Number("h"), v: r.Number("v"), rho: r.Number("rho"), cp: r.Number("cp"),
+			iapwsRho: r.Printed("iapws_rho"), iapwsCp: r.Printed("iapws_cp"), // not of dry air
+		})
 	}
 	if len(out) != 90 {
 		t.Fatalf("%d rows, want 90", len(out))

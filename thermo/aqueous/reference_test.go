@@ -1,15 +1,15 @@
 package aqueous
 
 import (
-	"encoding/csv"
 	"fmt"
 	"maps"
 	"math"
 	"os"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // TestPolynomials holds every row of the file to values of the same polynomials
@@ -138,34 +138,18 @@ func (r row) mixture(t *testing.T) *mixture {
 
 func rows(t *testing.T) []row {
 	t.Helper()
-	file, err := os.Open("testdata/solutions.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
 	var out []row
-	for _, l := range lines[1:] {
-		r := row{solute: l[0], source: l[8]}
-		for k, to := range []*float64{&r.x, &r.T, &r.fitDensity, &r.fitCp, &r.fitFreezing, &r.density, &r.cp, nil, &r.devDensity, &r.devCp} {
-			if to == nil {
-				continue
-			}
-			if l[k+1] == "" {
-				*to = math.NaN()
-			} else if *to, err = strconv.ParseFloat(l[k+1], 64); err != nil {
-				t.Fatalf("row %q: %v", l, err)
-			}
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "solutions.csv") {
+		x := row{
+			solute: r.Text("solute"), x: r.Number("x_mass"), T: r.Number("T_K"),
+			fitDensity: r.Number("fit_rho_kg_per_m3"), fitCp: r.Number("fit_cp_J_per_kgK"), fitFreezing: r.Number("fit_T_freeze_K"),
+			density: r.Printed("ref_rho_kg_per_m3"), cp: r.Printed("ref_cp_J_per_kgK"), source: r.Text("ref_source"),
+			devDensity: r.Printed("dev_rho_percent"), devCp: r.Printed("dev_cp_percent"),
 		}
-		if r.source != "" && math.IsNaN(r.density) {
-			t.Fatalf("row %q: a reference without a density", l)
+		if x.source != "" && math.IsNaN(x.density) {
+			t.Fatalf("%s: a reference without a density", r)
 		}
-		out = append(out, r)
+		out = append(out, x)
 	}
 	return out
 }

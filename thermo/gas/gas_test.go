@@ -1,12 +1,10 @@
 package gas
 
 import (
-	"encoding/csv"
 	"errors"
 	"maps"
 	"math"
 	"os"
-	"strconv"
 	"testing"
 
 	"heatreeve/thermo"
@@ -65,40 +63,9 @@ func TestConformance(t *testing.T) {
 	}
 }
 
-// row of a table in testdata, by column name.
-type row map[string]string
-
-func rows(t *testing.T, name string) []row {
+func rows(t *testing.T, name string) []fluidtest.Row {
 	t.Helper()
-	file, err := os.Open("testdata/" + name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	r := csv.NewReader(file)
-	r.Comment = '#'
-	lines, err := r.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var out []row
-	for _, line := range lines[1:] {
-		m := row{}
-		for k, head := range lines[0] {
-			m[head] = line[k]
-		}
-		out = append(out, m)
-	}
-	return out
-}
-
-func (r row) number(t *testing.T, column string) float64 {
-	t.Helper()
-	v, err := strconv.ParseFloat(r[column], 64)
-	if err != nil {
-		t.Fatalf("%v: column %q: %v", r, column, err)
-	}
-	return v
+	return fluidtest.Rows(t, os.DirFS("testdata"), name)
 }
 
 func pure(t testing.TB, species string, model Model) thermo.Fluid {
@@ -152,10 +119,10 @@ func TestAgainstTables(t *testing.T) {
 	}
 	seen, worstCp, worstH := map[string]int{}, map[string]float64{}, map[string]float64{}
 	for _, r := range rows(t, "ideal-gas.csv") {
-		s, T := r["species"], r.number(t, "T_K")
+		s, T := r.Text("species"), r.Number("T_K")
 		seen[s]++
 		cp, h := ideal(t, s, T)
-		wantCp, wantH := r.number(t, "cp_J_per_molK"), r.number(t, "h_minus_h298_J_per_mol")
+		wantCp, wantH := r.Number("cp_J_per_molK"), r.Number("h_minus_h298_J_per_mol")
 		dCp := max(0, math.Abs(cp-wantCp)-0.0005) / wantCp * 100
 		dH := max(0, math.Abs(h-wantH)-0.6) / max(1, math.Abs(wantH)) * 100
 		worstCp[s], worstH[s] = max(worstCp[s], dCp), max(worstH[s], dH)
@@ -164,13 +131,13 @@ func TestAgainstTables(t *testing.T) {
 			limit = tolerance[s].cool
 		}
 		if dCp > limit.cp {
-			t.Errorf("%s %g K: cp = %.4f, want %.4f J/(mol K) (%.3f %%; %s)", s, T, cp, wantCp, dCp, r["source"])
+			t.Errorf("%s %g K: cp = %.4f, want %.4f J/(mol K) (%.3f %%; %s)", s, T, cp, wantCp, dCp, r.Text("source"))
 		}
 		if dH > limit.h {
-			t.Errorf("%s %g K: h = %.1f, want %.1f J/mol (%.3f %%; %s)", s, T, h, wantH, dH, r["source"])
+			t.Errorf("%s %g K: h = %.1f, want %.1f J/mol (%.3f %%; %s)", s, T, h, wantH, dH, r.Text("source"))
 		}
-		if d := 100 * (cp/wantCp - 1); math.Abs(d-r.number(t, "deviation_percent")) > 0.0025 {
-			t.Errorf("%s %g K: cp is off by %.4f %%, found elsewhere %s %%", s, T, d, r["deviation_percent"])
+		if d := 100 * (cp/wantCp - 1); math.Abs(d-r.Number("deviation_percent")) > 0.0025 {
+			t.Errorf("%s %g K: cp is off by %.4f %%, found elsewhere %s %%", s, T, d, r.Text("deviation_percent"))
 		}
 	}
 	for _, s := range append(Species(), "dry-air") {
@@ -186,7 +153,7 @@ func TestAgainstTables(t *testing.T) {
 func TestTrust(t *testing.T) {
 	compared := 0
 	for _, r := range rows(t, "real-gas.csv") {
-		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
+		s, T, p := r.Text("species"), r.Number("T_K"), r.Number("p_Pa")
 		f := pure(t, s, Ideal)
 		got, err := f.At(T, p)
 		if p > f.Bounds().MaxP {
@@ -200,17 +167,17 @@ func TestTrust(t *testing.T) {
 		if f.Bounds().MaxP == leastMaxP { // too far from ideal for the usual limit
 			cpLimit, rhoLimit = 0.034, 0.016
 		}
-		if d := got.Cp/r.number(t, "cp_J_per_kgK") - 1; err != nil || math.Abs(d) > cpLimit {
-			t.Errorf("%s %g K, %g Pa: cp is off by %.2f %%, %v (%s)", s, T, p, 100*d, err, r["eos"])
+		if d := got.Cp/r.Number("cp_J_per_kgK") - 1; err != nil || math.Abs(d) > cpLimit {
+			t.Errorf("%s %g K, %g Pa: cp is off by %.2f %%, %v (%s)", s, T, p, 100*d, err, r.Text("eos"))
 		}
-		if d := got.Density/r.number(t, "rho_kg_per_m3") - 1; math.Abs(d) > rhoLimit {
-			t.Errorf("%s %g K, %g Pa: density is off by %.2f %% (%s)", s, T, p, 100*d, r["eos"])
+		if d := got.Density/r.Number("rho_kg_per_m3") - 1; math.Abs(d) > rhoLimit {
+			t.Errorf("%s %g K, %g Pa: density is off by %.2f %% (%s)", s, T, p, 100*d, r.Text("eos"))
 		}
 		uCp, uDensity := f.Uncertainty(T, p)
-		dCp, dDensity := math.Abs(got.Cp/r.number(t, "cp_J_per_kgK")-1), math.Abs(got.Density/r.number(t, "rho_kg_per_m3")-1)
+		dCp, dDensity := math.Abs(got.Cp/r.Number("cp_J_per_kgK")-1), math.Abs(got.Density/r.Number("rho_kg_per_m3")-1)
 		if dCp > 2*uCp || dDensity > 2*uDensity {
 			t.Errorf("%s %g K, %g Pa: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %% (%s)",
-				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r["eos"])
+				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r.Text("eos"))
 		}
 	}
 	if compared < 40 {

@@ -17,7 +17,7 @@ var pseudo = criticalPoint{132.5306, 3786000, 0.0335}
 func TestResidual(t *testing.T) {
 	worst := 0.0
 	for _, r := range rows(t, "real-gas.csv") {
-		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
+		s, T, p := r.Text("species"), r.Number("T_K"), r.Number("p_Pa")
 		var one fluid1
 		if s == "dry-air" {
 			one.add(pseudo, 1)
@@ -33,7 +33,7 @@ func TestResidual(t *testing.T) {
 			{"pr_cp_residual_J_per_kgK", got.cp * thermo.R / M},
 			{"pr_h_residual_J_per_kg", got.h * thermo.R * T / M},
 		} {
-			want := r.number(t, c.column)
+			want := r.Number(c.column)
 			d := math.Abs(c.got/want - 1)
 			if worst = max(worst, d); d > 4.4e-6 {
 				t.Errorf("%s %g K, %g Pa: %s = %.7g, want %.7g", s, T, p, c.column, c.got, want)
@@ -60,7 +60,7 @@ func TestTrustOfPengRobinson(t *testing.T) {
 	type worst struct{ cp, density, ratio float64 }
 	inside, refused := map[bool]*worst{true: {}, false: {}}, 0
 	for _, r := range rows(t, "real-gas.csv") {
-		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
+		s, T, p := r.Text("species"), r.Number("T_K"), r.Number("p_Pa")
 		f := pure(t, s, PengRobinson)
 		got, err := f.At(T, p)
 		if err != nil {
@@ -69,11 +69,11 @@ func TestTrustOfPengRobinson(t *testing.T) {
 		}
 		w := inside[T >= warm*f.(*cubic).one.T]
 		uCp, uDensity := f.Uncertainty(T, p)
-		dCp, dDensity := math.Abs(got.Cp/r.number(t, "cp_J_per_kgK")-1), math.Abs(got.Density/r.number(t, "rho_kg_per_m3")-1)
+		dCp, dDensity := math.Abs(got.Cp/r.Number("cp_J_per_kgK")-1), math.Abs(got.Density/r.Number("rho_kg_per_m3")-1)
 		w.cp, w.density, w.ratio = max(w.cp, dCp), max(w.density, dDensity), max(w.ratio, dCp/uCp, dDensity/uDensity)
 		if dCp > 2*uCp || dDensity > 2*uDensity {
 			t.Errorf("%s %g K, %g Pa: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %% (%s)",
-				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r["eos"])
+				s, T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, r.Text("eos"))
 		}
 	}
 	for side, limit := range map[bool]worst{true: {cp: 0.0204, density: 0.0261}, false: {cp: 0.066, density: 0.019}} {
@@ -140,14 +140,14 @@ func TestHumidAir(t *testing.T) {
 	for _, model := range []Model{Ideal, PengRobinson} {
 		compared, worst, worstCp := 0, 0.0, 0.0
 		for _, r := range rows(t, "humid-air.csv") {
-			T, p, W := r.number(t, "T_K"), r.number(t, "p_Pa"), r.number(t, "W_kg_per_kg")
+			T, p, W := r.Number("T_K"), r.Number("p_Pa"), r.Number("W_kg_per_kg")
 			x, err := MoleFractions(map[string]float64{"air": 1 / (1 + W), "H2O": W / (1 + W)})
 			if err != nil {
 				t.Fatal(err)
 			}
 			f := mustNew(t, x, model)
 			got, err := f.At(T, p)
-			if r["RH"] == "1" && err != nil {
+			if r.Text("RH") == "1" && err != nil {
 				continue
 			}
 			if err != nil {
@@ -155,8 +155,8 @@ func TestHumidAir(t *testing.T) {
 			}
 			compared++
 			uCp, uDensity := f.Uncertainty(T, p)
-			dCp := math.Abs(got.Cp*(1+W)/r.number(t, "cp_J_per_kg_dry_K") - 1)
-			dDensity := math.Abs(got.Density/r.number(t, "rho_kg_per_m3") - 1)
+			dCp := math.Abs(got.Cp*(1+W)/r.Number("cp_J_per_kg_dry_K") - 1)
+			dDensity := math.Abs(got.Density/r.Number("rho_kg_per_m3") - 1)
 			worst, worstCp = max(worst, dCp/uCp, dDensity/uDensity), max(worstCp, dCp)
 			if dCp > 2*uCp || dDensity > 2*uDensity {
 				t.Errorf("%v %g K, W %g: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %%",

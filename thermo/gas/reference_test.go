@@ -14,15 +14,15 @@ import (
 // The best model is the reference equation, to the six digits of the rows.
 func TestBestIsReference(t *testing.T) {
 	for _, r := range rows(t, "real-gas.csv") {
-		s, T, p := r["species"], r.number(t, "T_K"), r.number(t, "p_Pa")
+		s, T, p := r.Text("species"), r.Number("T_K"), r.Number("p_Pa")
 		got, err := pure(t, s, Best).At(T, p)
 		if err != nil {
 			t.Errorf("%s %g K, %g Pa: %v", s, T, p, err)
 			continue
 		}
 		for column, v := range map[string]float64{"rho_kg_per_m3": got.Density, "cp_J_per_kgK": got.Cp, "cv_J_per_kgK": got.Cv} {
-			if want := r.number(t, column); math.Abs(v/want-1) > 5e-6 {
-				t.Errorf("%s %g K, %g Pa: %s = %.7g, want %.7g (%s)", s, T, p, column, v, want, r["eos"])
+			if want := r.Number(column); math.Abs(v/want-1) > 5e-6 {
+				t.Errorf("%s %g K, %g Pa: %s = %.7g, want %.7g (%s)", s, T, p, column, v, want, r.Text("eos"))
 			}
 		}
 	}

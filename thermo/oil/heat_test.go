@@ -9,22 +9,22 @@ import (
 // table are printed.
 func TestCorrelations(t *testing.T) {
 	const tolerance = 3e-6
-	all := records(t, "petroleum-cp.csv")
+	all := rows(t, "petroleum-cp.csv")
 	if len(all) != 20 {
 		t.Errorf("%d rows, want 20", len(all))
 	}
 	var worst, spread float64
 	for _, r := range all {
-		sg, kw, T := r.number(t, "SG"), r.number(t, "Kw"), r.number(t, "T_K")
-		if api := 141.5/sg - 131.5; math.Abs(api-r.number(t, "API")) > 6e-5 {
-			t.Errorf("SG %g is %g API, want %s", sg, api, r["API"])
+		sg, kw, T := r.Number("SG"), r.Number("Kw"), r.Number("T_K")
+		if api := 141.5/sg - 131.5; math.Abs(api-r.Number("API")) > 6e-5 {
+			t.Errorf("SG %g is %g API, want %s", sg, api, r.Text("API"))
 		}
 		lo, hi := math.Inf(1), 0.0
 		for column, c := range map[string]quadratic{
 			"cragoe_J_per_kgK": cragoe(sg), "fallon_watson_J_per_kgK": fallonWatson(sg, kw),
 			"kesler_lee_J_per_kgK": keslerLee(sg, kw), "api_7D22_J_per_kgK": api7D22(sg, kw),
 		} {
-			want := r.number(t, column)
+			want := r.Number(column)
 			lo, hi = min(lo, want), max(hi, want)
 			d := math.Abs(c.at(T)/want - 1)
 			worst = max(worst, d)

@@ -27,8 +27,8 @@ func TestPetroleumConformance(t *testing.T) {
 // cp is Kesler and Lee's where the Watson factor is known, else Cragoe's within its range;
 // the rows of the table by way of the fluid.
 func TestChosenCorrelation(t *testing.T) {
-	for _, r := range records(t, "petroleum-cp.csv") {
-		sg, kw, T := r.number(t, "SG"), r.number(t, "Kw"), r.number(t, "T_K")
+	for _, r := range rows(t, "petroleum-cp.csv") {
+		sg, kw, T := r.Number("SG"), r.Number("Kw"), r.Number("T_K")
 		rho15, err := DensityOfAPI(141.5/sg-131.5, "crude oil")
 		if err != nil {
 			t.Fatal(err)
@@ -39,7 +39,7 @@ func TestChosenCorrelation(t *testing.T) {
 			}
 			f := must(t)(Petroleum(rho15, watson, "crude oil"))
 			s, err := f.At(T, maxPressure)
-			if want := r.number(t, column); err != nil || math.Abs(s.Cp/want-1) > 3e-6 {
+			if want := r.Number(column); err != nil || math.Abs(s.Cp/want-1) > 3e-6 {
 				t.Errorf("%s at %g K: cp %.8g, %v; want %.8g", f.Name(), T, s.Cp, err, want)
 			}
 		}

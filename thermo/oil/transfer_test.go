@@ -19,24 +19,24 @@ func TestTransferConformance(t *testing.T) {
 
 // Every row of the sheets is met, and so is every vapour pressure by the boiling point.
 func TestTransferRows(t *testing.T) {
-	all := records(t, "transfer.csv")
+	all := rows(t, "transfer.csv")
 	if len(all) != 160 {
 		t.Errorf("%d rows, want 160", len(all))
 	}
 	pressures := 0
 	for _, r := range all {
-		f := must(t)(HeatTransfer(r["liquid"]))
-		T := r.number(t, "T_K")
+		f := must(t)(HeatTransfer(r.Text("liquid")))
+		T := r.Number("T_K")
 		s, err := f.At(T, 2e6)
-		if err != nil || math.Abs(s.Cp/r.number(t, "cp_J_per_kgK")-1) > 1e-14 || math.Abs(s.Density/r.number(t, "rho_kg_per_m3")-1) > 1e-14 {
-			t.Errorf("%s at %g K: %+v, %v; want cp %s, density %s", f.Name(), T, s, err, r["cp_J_per_kgK"], r["rho_kg_per_m3"])
+		if err != nil || math.Abs(s.Cp/r.Number("cp_J_per_kgK")-1) > 1e-14 || math.Abs(s.Density/r.Number("rho_kg_per_m3")-1) > 1e-14 {
+			t.Errorf("%s at %g K: %+v, %v; want cp %s, density %s", f.Name(), T, s, err, r.Text("cp_J_per_kgK"), r.Text("rho_kg_per_m3"))
 		}
-		if r["psat_Pa"] == "" {
+		if !r.Has("psat_Pa") {
 			continue
 		}
 		pressures++
-		if _, hi := f.Span(r.number(t, "psat_Pa")); math.Abs(hi/T-1) > 1e-12 {
-			t.Errorf("%s at %s Pa boils at %.12g K, want %g", f.Name(), r["psat_Pa"], hi, T)
+		if _, hi := f.Span(r.Number("psat_Pa")); math.Abs(hi/T-1) > 1e-12 {
+			t.Errorf("%s at %s Pa boils at %.12g K, want %g", f.Name(), r.Text("psat_Pa"), hi, T)
 		}
 	}
 	if pressures != 118 {

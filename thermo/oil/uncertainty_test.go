@@ -34,20 +34,20 @@ func TestCpUncertainty(t *testing.T) {
 
 // Every correlation of the table lies within the half-width of the chosen one.
 func TestSpreadIsCovered(t *testing.T) {
-	for _, r := range records(t, "petroleum-cp.csv") {
-		sg, T := r.number(t, "SG"), r.number(t, "T_K")
+	for _, r := range rows(t, "petroleum-cp.csv") {
+		sg, T := r.Number("SG"), r.Number("T_K")
 		rho15, err := DensityOfAPI(141.5/sg-131.5, "crude oil")
 		if err != nil {
 			t.Fatal(err)
 		}
-		f := must(t)(Petroleum(rho15, r.number(t, "Kw"), "crude oil"))
+		f := must(t)(Petroleum(rho15, r.Number("Kw"), "crude oil"))
 		s, err := f.At(T, maxPressure)
 		if err != nil {
 			t.Fatal(err)
 		}
 		u, _ := f.Uncertainty(T, atm)
 		for _, column := range []string{"cragoe_J_per_kgK", "fallon_watson_J_per_kgK", "api_7D22_J_per_kgK"} {
-			if d := math.Abs(r.number(t, column)/s.Cp - 1); d > u*math.Sqrt(3)+3e-6 {
+			if d := math.Abs(r.Number(column)/s.Cp - 1); d > u*math.Sqrt(3)+3e-6 {
 				t.Errorf("SG %g at %g K: %s deviates by %.3g, half-width %.3g", sg, T, column, d, u*math.Sqrt(3))
 			}
 		}

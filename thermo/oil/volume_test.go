@@ -11,30 +11,30 @@ import (
 // fluid itself.
 func TestVolumeCorrection(t *testing.T) {
 	const tolerance = 5e-7
-	all := records(t, "petroleum-density.csv")
+	all := rows(t, "petroleum-density.csv")
 	if len(all) != 78 {
 		t.Errorf("%d rows, want 78", len(all))
 	}
 	var worst float64
 	for _, r := range all {
-		rho15, T := r.number(t, "rho15_kg_per_m3"), r.number(t, "T_K")
-		g, err := groupFor(rho15, r["group"])
+		rho15, T := r.Number("rho15_kg_per_m3"), r.Number("T_K")
+		g, err := groupFor(rho15, r.Text("group"))
 		if err != nil {
 			t.Error(err)
 			continue
 		}
-		if a := g.alpha(rho15); math.Abs(a-r.number(t, "alpha15_per_K")) > 5.1e-10 {
-			t.Errorf("%s %g: alpha %.6g, want %s", g.name, rho15, a, r["alpha15_per_K"])
+		if a := g.alpha(rho15); math.Abs(a-r.Number("alpha15_per_K")) > 5.1e-10 {
+			t.Errorf("%s %g: alpha %.6g, want %s", g.name, rho15, a, r.Text("alpha15_per_K"))
 		}
-		s, err := must(t)(Petroleum(rho15, 12, r["group"])).At(T, maxPressure)
+		s, err := must(t)(Petroleum(rho15, 12, r.Text("group"))).At(T, maxPressure)
 		if err != nil {
 			t.Error(err)
 			continue
 		}
-		d := math.Abs(s.Density/rho15 - r.number(t, "VCF"))
+		d := math.Abs(s.Density/rho15 - r.Number("VCF"))
 		worst = max(worst, d)
-		if d > tolerance+1e-12 || math.Abs(s.Density-r.number(t, "rho_kg_per_m3")) > 5.1e-5 {
-			t.Errorf("%s %g at %g K: factor %.8g, density %.9g; want %s, %s", g.name, rho15, T, s.Density/rho15, s.Density, r["VCF"], r["rho_kg_per_m3"])
+		if d > tolerance+1e-12 || math.Abs(s.Density-r.Number("rho_kg_per_m3")) > 5.1e-5 {
+			t.Errorf("%s %g at %g K: factor %.8g, density %.9g; want %s, %s", g.name, rho15, T, s.Density/rho15, s.Density, r.Text("VCF"), r.Text("rho_kg_per_m3"))
 		}
 	}
 	t.Logf("%d rows, worst deviation %.2g", len(all), worst)

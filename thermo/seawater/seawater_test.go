@@ -1,14 +1,12 @@
 package seawater
 
 import (
-	"encoding/csv"
 	"errors"
 	"fmt"
 	"maps"
 	"math"
 	"os"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
 
@@ -49,26 +47,12 @@ type row struct {
 
 func rows(t *testing.T) []row {
 	t.Helper()
-	file, err := os.Open("testdata/teos10.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
 	var out []row
-	for _, l := range lines[1:] {
-		var r row
-		for k, to := range []*float64{&r.practical, &r.s, &r.T, &r.p, &r.cp, &r.h, &r.rho, &r.sharqawyCp, &r.sharqawyRho, &r.unescoCp} {
-			if *to, err = strconv.ParseFloat(l[k], 64); err != nil {
-				t.Fatalf("row %q: %v", l, err)
-			}
-		}
-		out = append(out, r)
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "teos10.csv") {
+		out = append(out, row{
+			practical: r.Number("S_practical"), s: r.Number("S"), T: r.Number("T_K"), p: r.Number("p_Pa"), cp: r.Number("cp"), h: r.Number("h"), rho: r.Number("rho"),
+			sharqawyCp: r.Number("sharqawy_cp"), sharqawyRho: r.Number("sharqawy_rho"), unescoCp: r.Number("unesco_cp"),
+		})
 	}
 	if len(out) != 80 {
 		t.Fatalf("%d rows, want 80", len(out))

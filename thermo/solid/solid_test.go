@@ -1,12 +1,10 @@
 package solid
 
 import (
-	"encoding/csv"
 	"errors"
 	"math"
 	"os"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
 
@@ -46,31 +44,9 @@ type row struct {
 
 func rows(t *testing.T) []row {
 	t.Helper()
-	file, err := os.Open("testdata/solids.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	number := func(s string) float64 {
-		v, err := strconv.ParseFloat(s, 64)
-		if err != nil {
-			t.Fatal(err)
-		}
-		return v
-	}
 	var out []row
-	for _, l := range lines[1:] {
-		r := row{solid: l[0], T: number(l[1]), cp: number(l[2]), density: number(l[4]), h: math.NaN()}
-		if l[3] != "" {
-			r.h = number(l[3])
-		}
-		out = append(out, r)
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "solids.csv") {
+		out = append(out, row{r.Text("solid"), r.Number("T_K"), r.Number("cp_J_per_kgK"), r.Number("rho_kg_per_m3"), r.Printed("h_minus_h298_J_per_kg")})
 	}
 	return out
 }

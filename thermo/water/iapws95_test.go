@@ -2,10 +2,11 @@ package water
 
 import (
 	"math"
-	"strconv"
+	"os"
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // TestAgainstIAPWS95 compares with the scientific formulation that IF97 was
@@ -60,15 +61,11 @@ type state95 struct {
 func states95(t *testing.T) []state95 {
 	t.Helper()
 	var out []state95
-	for _, row := range readTable(t, "testdata/iapws95.csv") {
-		s := state95{phase: row[0]}
-		for k, to := range []*float64{&s.T, &s.p, &s.density, &s.enthalpy, &s.cp, &s.cv} {
-			var err error
-			if *to, err = strconv.ParseFloat(row[k+1], 64); err != nil {
-				t.Fatalf("row %q: %v", row, err)
-			}
-		}
-		out = append(out, s)
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "iapws95.csv") {
+		out = append(out, state95{
+			phase: r.Text("phase"), T: r.Number("T_K"), p: r.Number("p_Pa"), density: r.Number("rho_kg_per_m3"),
+			enthalpy: r.Number("h_J_per_kg"), cp: r.Number("cp_J_per_kgK"), cv: r.Number("cv_J_per_kgK"),
+		})
 	}
 	return out
 }

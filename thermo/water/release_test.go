@@ -1,13 +1,12 @@
 package water
 
 import (
-	"encoding/csv"
 	"math"
 	"os"
-	"strconv"
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // printed is how far a value worked from the printed coefficients may lie from a
@@ -24,38 +23,13 @@ type row struct {
 
 func release(t *testing.T) (rows []row) {
 	t.Helper()
-	for _, r := range readTable(t, "testdata/if97.csv") {
-		x := row{table: r[0]}
-		for k, to := range []*float64{&x.T, &x.p, &x.density, &x.v, &x.h, &x.u, &x.s, &x.cp, &x.w} {
-			*to = math.NaN()
-			if r[k+3] == "" {
-				continue
-			}
-			var err error
-			if *to, err = strconv.ParseFloat(r[k+3], 64); err != nil {
-				t.Fatalf("row %q: %v", r, err)
-			}
-		}
-		rows = append(rows, x)
+	for _, r := range fluidtest.Rows(t, os.DirFS("testdata"), "if97.csv") {
+		rows = append(rows, row{
+			table: r.Text("table"), T: r.Printed("T_K"), p: r.Printed("p_MPa"), density: r.Printed("rho_kg_per_m3"), v: r.Printed("v_m3_per_kg"),
+			h: r.Printed("h_kJ_per_kg"), u: r.Printed("u_kJ_per_kg"), s: r.Printed("s_kJ_per_kgK"), cp: r.Printed("cp_kJ_per_kgK"), w: r.Printed("w_m_per_s"),
+		})
 	}
 	return rows
-}
-
-// readTable returns the rows below the heading of a CSV file.
-func readTable(t *testing.T, path string) [][]string {
-	t.Helper()
-	file, err := os.Open(path)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	r := csv.NewReader(file)
-	r.Comment = '#'
-	rows, err := r.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	return rows[1:]
 }
 
 // Every value that IAPWS R7-97(2012) prints for checking programs. Entropy and

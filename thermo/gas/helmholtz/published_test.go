@@ -1,62 +1,29 @@
 package helmholtz
 
 import (
-	"encoding/csv"
 	"math"
 	"os"
-	"strconv"
 	"strings"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // printed is a figure of a table together with half of its last digit.
 type printed struct{ value, half float64 }
 
-func parse(t *testing.T, s string) printed {
-	t.Helper()
-	v, err := strconv.ParseFloat(s, 64)
-	if err != nil {
-		t.Fatalf("%q: %v", s, err)
-	}
-	// six significant digits, of which %g drops the zeros at the end
-	half := 0.5 * math.Pow(10, math.Floor(math.Log10(math.Abs(v)))-5)
-	return printed{v, half}
+// sixDigits is v as %g prints it, without the zeros at the end.
+func sixDigits(v float64) printed {
+	return printed{v, 0.5 * math.Pow(10, math.Floor(math.Log10(math.Abs(v)))-5)}
 }
 
 // a hundredth over half of the last digit, for a figure that lies on the edge
 func (p printed) agrees(got float64) bool { return math.Abs(got-p.value) <= 1.01*p.half }
 
-// row of a table, by column name.
-type row map[string]string
-
-func (r row) number(t *testing.T, column string) printed {
-	t.Helper()
-	return parse(t, r[column])
-}
-
 // table returns the rows of a file that this package shares with package gas.
-func table(t *testing.T, name string) []row {
+func table(t *testing.T, name string) []fluidtest.Row {
 	t.Helper()
-	file, err := os.Open("../testdata/" + name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	r := csv.NewReader(file)
-	r.Comment = '#'
-	lines, err := r.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var out []row
-	for _, line := range lines[1:] {
-		m := row{}
-		for k, head := range lines[0] {
-			m[head] = line[k]
-		}
-		out = append(out, m)
-	}
-	return out
+	return fluidtest.Rows(t, os.DirFS("../testdata"), name)
 }
 
 func of(t *testing.T, formula string) *fluid {
@@ -76,32 +43,31 @@ func TestAgainstAnotherEvaluation(t *testing.T) {
 	var compared int
 	var worst float64
 	for _, row := range table(t, "real-gas.csv") {
-		f := of(t, row["species"])
-		T, p := row.number(t, "T_K").value, row.number(t, "p_Pa").value
+		f := of(t, row.Text("species"))
+		T, p := row.Number("T_K"), row.Number("p_Pa")
 		got, err := f.At(T, p)
 		if err != nil {
 			t.Errorf("%v: %v", row, err)
 			continue
 		}
-		z := row.number(t, "Z")
-		z.half = 0.5e-5
+		z := printed{row.Number("Z"), 0.5e-5}
 		cp0, h0 := ideal(f, T)
 		for _, c := range []struct {
 			name string
 			got  float64
 			want printed
 		}{
-			{"density", got.Density, row.number(t, "rho_kg_per_m3")},
-			{"cp", got.Cp, row.number(t, "cp_J_per_kgK")},
-			{"cv", got.Cv, row.number(t, "cv_J_per_kgK")},
-			{"cp of the ideal gas", cp0, row.number(t, "cp_ideal_J_per_kgK")},
-			{"h less that of the ideal gas", got.Enthalpy - h0, row.number(t, "h_departure_J_per_kg")},
+			{"density", got.Density, sixDigits(row.Number("rho_kg_per_m3"))},
+			{"cp", got.Cp, sixDigits(row.Number("cp_J_per_kgK"))},
+			{"cv", got.Cv, sixDigits(row.Number("cv_J_per_kgK"))},
+			{"cp of the ideal gas", cp0, sixDigits(row.Number("cp_ideal_J_per_kgK"))},
+			{"h less that of the ideal gas", got.Enthalpy - h0, sixDigits(row.Number("h_departure_J_per_kg"))},
 			{"compressibility", p / (got.Density * f.r * T), z},
 		} {
 			compared++
 			worst = max(worst, math.Abs(c.got/c.want.value-1))
 			if !c.want.agrees(c.got) {
-				t.Errorf("%s %g K, %g Pa: %s = %.9g, want %.9g (%s)", f.name, T, p, c.name, c.got, c.want.value, row["eos"])
+				t.Errorf("%s %g K, %g Pa: %s = %.9g, want %.9g (%s)", f.name, T, p, c.name, c.got, c.want.value, row.Text("eos"))
 			}
 		}
 	}
@@ -140,13 +106,13 @@ func TestIdealPart(t *testing.T) {
 	}
 	seen, worst := map[string]int{}, map[string]float64{}
 	for _, row := range table(t, "ideal-gas.csv") {
-		s, source := row["species"], row["source"]
+		s, source := row.Text("species"), row.Text("source")
 		limit, ours := tolerance[s]
 		if !ours {
 			continue // no equation of this package
 		}
 		f := of(t, s)
-		T, want, wantH := row.number(t, "T_K").value, row.number(t, "cp_J_per_molK").value, row.number(t, "h_minus_h298_J_per_mol").value
+		T, want, wantH := row.Number("T_K"), row.Number("cp_J_per_molK"), row.Number("h_minus_h298_J_per_mol")
 		if T > f.maxT {
 			continue
 		}
