@@ -160,6 +160,7 @@ func TestFaults(t *testing.T) {
 		{name: "zero drift within the threshold", q: -0.01, ti: 350, to: 330, fluid: liquid, idleBelow: 0.02, idle: true},
 		{name: "reverse", q: -0.5, ti: 350, to: 330, fluid: liquid, idleBelow: 0.02, fault: Reverse, inReason: "-0.5"},
 		{name: "near boiling", q: 2, ti: 416, to: 330, fluid: liquid, fault: Saturation, inReason: "boiling at 146.85 °C"},
+		{name: "above boiling", q: 2, ti: 425, to: 330, fluid: liquid, fault: Saturation, inReason: "inlet at 151.85 °C is above boiling at 146.85 °C"},
 		{name: "just far enough from boiling", q: 2, ti: 415, to: 330, fluid: liquid},
 		{name: "outlet near dew point", q: 2, ti: 400, to: 334, fluid: steady{cp: 1000, rho: 1, lo: 330, hi: 9999, phase: thermo.Gas}, fault: Saturation, inReason: "outlet"},
 		{name: "outside the fluid", q: 2, ti: 601, to: 330, fluid: steady{cp: 1000, rho: 1, hi: 9999, phase: thermo.Liquid}, fault: OutOfRange, inReason: "by construction"},

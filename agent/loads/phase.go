@@ -18,6 +18,8 @@ type Remark struct {
 // and is no reason to refuse: what stands above its freezing point is still a liquid.
 const nearFreezing = 3
 
+const dewPoint = "the dew point"
+
 // end is one end of the stream, or a surface in it, with what bounds its phase there.
 type end struct {
 	name         string
@@ -29,9 +31,21 @@ func (m *medium) end(name string, T, p float64) end {
 	return end{name, T, p, lo, hi}
 }
 
-// near says that the end is within margin of the limit at the temperature T.
-func (e *end) near(margin float64, limit string, T float64) string {
-	return fmt.Sprintf("%s at %.2f °C is within %g K of %s at %.2f °C (%.1f kPa absolute)", e.name, e.T-273.15, margin, limit, T-273.15, e.p/1e3)
+// above says that the end is above the upper limit of its phase, or how near to it.
+func (e *end) above(limit string, margin float64) string {
+	return e.place(e.T > e.hi, "above", limit, e.hi, margin)
+}
+
+// below says that the end is below the lower limit of its phase, or how near to it.
+func (e *end) below(limit string, margin float64) string {
+	return e.place(e.T < e.lo, "below", limit, e.lo, margin)
+}
+
+func (e *end) place(beyond bool, side, limit string, T, margin float64) string {
+	if !beyond {
+		side = fmt.Sprintf("within %g K of", margin)
+	}
+	return fmt.Sprintf("%s at %.2f °C is %s %s at %.2f °C (%.1f kPa absolute)", e.name, e.T-273.15, side, limit, T-273.15, e.p/1e3)
 }
 
 // phase tells how near the state is to a change of phase. Refused says why there is no
@@ -48,11 +62,11 @@ func (q *equation) phase(m *medium, x *State) (refused string, r Remark) {
 	for _, e := range ends {
 		switch {
 		case liquid && e.T > e.hi-q.Margin:
-			return e.near(q.Margin, "boiling", e.hi) + ": heat may be latent", Remark{}
+			return e.above("boiling", q.Margin) + ": heat may be latent", Remark{}
 		case gas && e.T < e.lo+q.Margin:
-			return e.near(q.Margin, "the dew point", e.lo) + ": heat may be latent", Remark{}
+			return e.below(dewPoint, q.Margin) + ": heat may be latent", Remark{}
 		case liquid && e.T < e.lo+frost && r.Note == "":
-			r.Note = "near freezing: " + e.near(frost, "freezing", e.lo) + ", and ice is not in the duty"
+			r.Note = "near freezing: " + e.below("freezing", frost) + ", and ice is not in the duty"
 		}
 	}
 	return "", r
@@ -73,15 +87,11 @@ func (q *equation) condensing(m *medium, x *State, ends [2]end) Remark {
 	const part = "sensible part only: "
 	switch {
 	case q.humid == nil && in.T < in.lo:
-		return Remark{true, part + in.below() + " and carries fog"}
+		return Remark{true, part + in.below(dewPoint, q.Margin) + " and carries fog"}
 	case coldest.T < coldest.lo:
-		return Remark{true, part + coldest.below() + ", and what condenses is not in the duty"}
+		return Remark{true, part + coldest.below(dewPoint, q.Margin) + ", and what condenses is not in the duty"}
 	case coldest.T < coldest.lo+q.Margin && coldest.T < in.T:
-		return Remark{true, part + coldest.near(q.Margin, "the dew point", coldest.lo) + ", and what may condense is not in the duty"}
+		return Remark{true, part + coldest.below(dewPoint, q.Margin) + ", and what may condense is not in the duty"}
 	}
 	return Remark{}
-}
-
-func (e *end) below() string {
-	return fmt.Sprintf("%s at %.2f °C is below the dew point at %.2f °C (%.1f kPa absolute)", e.name, e.T-273.15, e.lo-273.15, e.p/1e3)
 }
