@@ -2,11 +2,8 @@ package air
 
 import (
 	"errors"
-	"fmt"
-	"maps"
 	"math"
 	"os"
-	"slices"
 	"strings"
 	"testing"
 
@@ -51,25 +48,12 @@ func rows(t *testing.T) []row {
 	return out
 }
 
-// worst keeps the largest deviation by name.
-type worst map[string]float64
-
-func (w worst) String() string {
-	var out []string
-	for _, name := range slices.Sorted(maps.Keys(w)) {
-		out = append(out, fmt.Sprintf("%s %.2g", name, w[name]))
-	}
-	return strings.Join(out, ", ")
-}
-
-func (w worst) note(name string, d float64) { w[name] = max(w[name], math.Abs(d)) }
-
 // TestAgainstTable holds every row to the digits printed (7e-7 relative) for psychrolib, and to
 // the largest deviations from the real mixture that were measured there: 0.16 % in density,
 // 1.69 % in cp.
 func TestAgainstTable(t *testing.T) {
-	tolerance := worst{"W": 7e-7, "h": 7e-7, "v": 7e-7, "density": 7e-7, "cp": 7e-7, "cp - cv": 1e-12, "real density": 1.6e-3, "real cp": 1.69e-2}
-	got := worst{}
+	tolerance := fluidtest.Deviations{"W": 7e-7, "h": 7e-7, "v": 7e-7, "density": 7e-7, "cp": 7e-7, "cp - cv": 1e-12, "real density": 1.6e-3, "real cp": 1.69e-2}
+	got := fluidtest.Deviations{}
 	for _, r := range rows(t) {
 		w, err := HumidityRatio(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: r.rh}, r.T, r.p)
 		if err != nil {
@@ -83,23 +67,23 @@ func TestAgainstTable(t *testing.T) {
 			continue
 		}
 		dry := 1 + w
-		deviations := worst{}
-		deviations.note("W", beyondDigits(w-r.w, 0.5e-8)/max(r.w, 1e-3))
-		deviations.note("h", beyondDigits(s.Enthalpy*dry-r.h, 0.005)/max(math.Abs(r.h), 1e3))
-		deviations.note("v", beyondDigits(dry/s.Density-r.v, 0.5e-6)/r.v)
-		deviations.note("density", beyondDigits(s.Density-r.rho, 0.5e-6)/r.rho)
-		deviations.note("cp", beyondDigits(s.Cp*dry-r.cp, 0.005)/r.cp)
-		deviations.note("cp - cv", (s.Cp-s.Cv)*s.Density*r.T/r.p-1) // R of the mixture, by its equation of state
+		deviations := fluidtest.Deviations{}
+		deviations.Note("W", beyondDigits(w-r.w, 0.5e-8)/max(r.w, 1e-3))
+		deviations.Note("h", beyondDigits(s.Enthalpy*dry-r.h, 0.005)/max(math.Abs(r.h), 1e3))
+		deviations.Note("v", beyondDigits(dry/s.Density-r.v, 0.5e-6)/r.v)
+		deviations.Note("density", beyondDigits(s.Density-r.rho, 0.5e-6)/r.rho)
+		deviations.Note("cp", beyondDigits(s.Cp*dry-r.cp, 0.005)/r.cp)
+		deviations.Note("cp - cv", (s.Cp-s.Cv)*s.Density*r.T/r.p-1) // R of the mixture, by its equation of state
 		if !math.IsNaN(r.iapwsRho) {
-			deviations.note("real density", beyondDigits(s.Density-r.iapwsRho, 0.5e-5)/r.iapwsRho)
-			deviations.note("real cp", beyondDigits(s.Cp*dry-r.iapwsCp, 0.005)/r.iapwsCp)
+			deviations.Note("real density", beyondDigits(s.Density-r.iapwsRho, 0.5e-5)/r.iapwsRho)
+			deviations.Note("real cp", beyondDigits(s.Cp*dry-r.iapwsCp, 0.005)/r.iapwsCp)
 			cp, density := f.Uncertainty(r.T, r.p)
 			if math.Sqrt(3)*cp < deviations["real cp"] || math.Sqrt(3)*density < deviations["real density"] {
 				t.Errorf("%+v: standard uncertainties %g and %g do not cover %v", r, cp, density, deviations)
 			}
 		}
 		for name, d := range deviations {
-			got.note(name, d)
+			got.Note(name, d)
 			if d > tolerance[name] {
 				t.Errorf("%g K, RH %g, %g Pa: %s is off by %.3g, more than %g", r.T, r.rh, r.p, name, d, tolerance[name])
 			}

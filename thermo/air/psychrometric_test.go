@@ -7,27 +7,28 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 	"heatreeve/thermo/water"
 )
 
 // IAPWS R14-08 (ice, values from memory) and IAPWS-IF97 (water) are newer than the ASHRAE
 // equations, which are the ones psychrometric tables are made with.
 func TestSaturationAgainstNewer(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	for T := 274.0; T <= hottest; T += 0.5 {
 		want, err := water.SaturationPressure(T)
 		if err != nil {
 			t.Fatal(err)
 		}
 		d := saturationPressure(T)/want - 1
-		got.note("water", d)
+		got.Note("water", d)
 		if math.Abs(d) > 4e-4 {
 			t.Errorf("%g K: %g Pa is off by %.2g from IAPWS-IF97", T, saturationPressure(T), d)
 		}
 	}
 	for _, tt := range []struct{ T, p float64 }{{230, 8.94735}, {250, 76.0145}, {273.16, 611.657}} {
 		d := saturationPressure(tt.T)/tt.p - 1
-		got.note("ice", d)
+		got.Note("ice", d)
 		if math.Abs(d) > 4e-4 {
 			t.Errorf("%g K: %g Pa is off by %.2g from %g", tt.T, saturationPressure(tt.T), d, tt.p)
 		}

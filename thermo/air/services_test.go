@@ -3,14 +3,13 @@
 package air
 
 import (
-	"bytes"
-	"encoding/json"
 	"math"
 	"math/rand/v2"
 	"os/exec"
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // state of moist air as the outside programs read it.
@@ -44,38 +43,6 @@ func randomStates(t *testing.T, n int) []state {
 	return out
 }
 
-// ask gives states to an outside program and reads what it makes of them.
-func ask[R any](t *testing.T, cmd *exec.Cmd, states []state, needs string) []R {
-	t.Helper()
-	in, err := json.Marshal(states)
-	if err != nil {
-		t.Fatal(err)
-	}
-	var complaint bytes.Buffer
-	cmd.Stdin, cmd.Stderr = bytes.NewReader(in), &complaint
-	out, err := cmd.Output()
-	if err != nil {
-		t.Fatalf("%s: %v\n%s", needs, err, complaint.String())
-	}
-	var results []R
-	if err := json.Unmarshal(out, &results); err != nil {
-		t.Fatalf("%s: %v in %.200q", needs, err, out)
-	}
-	if len(results) != len(states) {
-		t.Fatalf("%s: %d results for %d states", needs, len(results), len(states))
-	}
-	return results
-}
-
-// check fails for a deviation beyond its bound, NaN too.
-func (w worst) check(t *testing.T, s state, name string, deviation, bound float64) {
-	t.Helper()
-	w.note(name, deviation)
-	if !(math.Abs(deviation) <= bound) {
-		t.Errorf("%+v: %s is off by %.3g, more than %.3g", s, name, deviation, bound)
-	}
-}
-
 const psychrolibScript = `
 const p = require('psychrolib');
 p.SetUnitSystem(p.SI);
@@ -90,6 +57,9 @@ console.log(JSON.stringify(states.map(s => {
 })));
 `
 
+// psychrometrics are what psychrolib says of a state.
+type psychrometrics struct{ Saturation, W, RH, H, V, Rho, Dew, Wick float64 }
+
 // TestAgainstPsychrolib compares with the npm package psychrolib 1.1.1. It solves dew point and
 // wet bulb to 1 mK and takes no humidity ratio below 1e-7; all else is closed form.
 func TestAgainstPsychrolib(t *testing.T) {
@@ -101,8 +71,8 @@ func TestAgainstPsychrolib(t *testing.T) {
 	node := exec.Command("node", "-e", psychrolibScript)
 	node.Dir = dir
 	states := randomStates(t, 4000)
-	got, wicks := worst{}, 0
-	for k, r := range ask[struct{ Saturation, W, RH, H, V, Rho, Dew, Wick float64 }](t, node, states, "node (Debian's package nodejs) with psychrolib") {
+	got, wicks := fluidtest.Deviations{}, 0
+	for k, r := range fluidtest.Ask[psychrometrics](t, "node (Debian's package nodejs) with psychrolib", node, states) {
 		s := states[k]
 		if s.W < 1e-7 {
 			continue
@@ -118,13 +88,13 @@ func TestAgainstPsychrolib(t *testing.T) {
 			t.Errorf("%+v: %v, %v", s, err1, err2)
 		}
 		dry := 1 + s.W
-		got.check(t, s, "saturation", saturationPressure(s.T)/r.Saturation-1, 1e-12)
-		got.check(t, s, "W", s.W/r.W-1, 1e-12)
-		got.check(t, s, "relative humidity", rh/r.RH-1, 1e-12)
-		got.check(t, s, "h", (a.Enthalpy*dry-r.H)/max(math.Abs(r.H), 1e3), 1e-12)
-		got.check(t, s, "v", dry/a.Density/r.V-1, 1e-12)
-		got.check(t, s, "density", a.Density/r.Rho-1, 1e-12)
-		got.check(t, s, "dew point in K", dew-r.Dew, 1e-3)
+		got.Check(t, s, "saturation", saturationPressure(s.T)/r.Saturation-1, 1e-12)
+		got.Check(t, s, "W", s.W/r.W-1, 1e-12)
+		got.Check(t, s, "relative humidity", rh/r.RH-1, 1e-12)
+		got.Check(t, s, "h", (a.Enthalpy*dry-r.H)/max(math.Abs(r.H), 1e3), 1e-12)
+		got.Check(t, s, "v", dry/a.Density/r.V-1, 1e-12)
+		got.Check(t, s, "density", a.Density/r.Rho-1, 1e-12)
+		got.Check(t, s, "dew point in K", dew-r.Dew, 1e-3)
 		if saturationPressure(s.T) < s.P { // its bisection starts from a wick at air temperature
 			wicks++
 			checkWick(t, got, s, r.Wick)
@@ -138,7 +108,7 @@ func TestAgainstPsychrolib(t *testing.T) {
 
 // checkWick compares wet bulbs. About 0 °C there may be two, one of water and one of ice, of which
 // psychrolib meets either; its wick must then balance within the step that it solves to.
-func checkWick(t *testing.T, got worst, s state, theirs float64) {
+func checkWick(t *testing.T, got fluidtest.Deviations, s state, theirs float64) {
 	t.Helper()
 	ours, err := WetBulb(s.W, s.T, s.P)
 	if err != nil {
@@ -152,7 +122,7 @@ func checkWick(t *testing.T, got worst, s state, theirs float64) {
 		}
 		return
 	}
-	got.check(t, s, "wet bulb in K", ours-theirs, 1e-3)
+	got.Check(t, s, "wet bulb in K", ours-theirs, 1e-3)
 }
 
 const humidAirScript = `
@@ -175,9 +145,8 @@ print(json.dumps(out))
 // uncertainties, as half-widths √3 times as large, must cover every deviation.
 func TestAgainstRealAir(t *testing.T) {
 	states := randomStates(t, 300)
-	got := worst{}
-	results := ask[struct{ Rho, Cp float64 }](t, exec.Command("/usr/bin/python3", "-c", humidAirScript), states, "Debian's package python3-iapws")
-	for k, r := range results {
+	got := fluidtest.Deviations{}
+	for k, r := range fluidtest.Python[struct{ Rho, Cp float64 }](t, "python3-iapws", humidAirScript, states) {
 		s := states[k]
 		f := mustMoist(t, s.W)
 		a, err := f.At(s.T, s.P)
@@ -186,8 +155,8 @@ func TestAgainstRealAir(t *testing.T) {
 			continue
 		}
 		cp, density := f.Uncertainty(s.T, s.P)
-		got.check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
-		got.check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
+		got.Check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
+		got.Check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
 	}
 	t.Logf("worst relative deviations at %d states: %s", len(states), got)
 }

@@ -3,12 +3,11 @@
 package aqueous
 
 import (
-	"bytes"
-	"encoding/json"
 	"math"
 	"math/rand/v2"
-	"os/exec"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // ammoniaScript gives density and cp of liquid states by IAPWS G4-01, the density
@@ -57,21 +56,7 @@ func TestAmmoniaAgainstIAPWS(t *testing.T) {
 		}
 	}
 	states = append(states, state{200, 0.3}, state{189.2, 0.3})
-	in, err := json.Marshal(states)
-	if err != nil {
-		t.Fatal(err)
-	}
-	var complaint bytes.Buffer
-	cmd := exec.Command("/usr/bin/python3", "-c", ammoniaScript)
-	cmd.Stdin, cmd.Stderr = bytes.NewReader(in), &complaint
-	out, err := cmd.Output()
-	if err != nil {
-		t.Fatalf("Debian's package python3-iapws: %v\n%s", err, complaint.String())
-	}
-	var want []struct{ Rho, Cp float64 }
-	if err := json.Unmarshal(out, &want); err != nil || len(want) != len(states) {
-		t.Fatalf("%d answers to %d states: %v", len(want), len(states), err)
-	}
+	want := fluidtest.Python[struct{ Rho, Cp float64 }](t, "python3-iapws", ammoniaScript, states)
 	var worst, cold struct{ cp, density float64 }
 	compared := 0
 	for k, s := range states {

@@ -5,6 +5,7 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // naive works density, cp and enthalpy for one state as the papers print them, the enthalpy by
@@ -68,7 +69,7 @@ func naivePressureTerm(salinity float64) float64 {
 
 // The printed form holds the one that is worked out per salinity, over the whole range.
 func TestAgainstPrintedForm(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	for _, salinity := range []float64{0, 0.01, 0.035, 0.12} {
 		f, printed := mustNew(t, salinity), naive(salinity)
 		for T := zero; T <= maxT; T += 8 {
@@ -76,9 +77,9 @@ func TestAgainstPrintedForm(t *testing.T) {
 				a := mustAt(t, f, T, p)
 				b, _ := printed(T, p)
 				at := []float64{salinity, T, p}
-				got.check(t, at, "cp", a.Cp/b.Cp-1, 1e-12)
-				got.check(t, at, "density", a.Density/b.Density-1, 1e-12)
-				got.check(t, at, "h in J/kg", a.Enthalpy-b.Enthalpy, 1e-3) // the difference of 0.1 K in the pressure term
+				got.Check(t, at, "cp", a.Cp/b.Cp-1, 1e-12)
+				got.Check(t, at, "density", a.Density/b.Density-1, 1e-12)
+				got.Check(t, at, "h in J/kg", a.Enthalpy-b.Enthalpy, 1e-3) // the difference of 0.1 K in the pressure term
 			}
 		}
 	}

@@ -3,10 +3,8 @@ package seawater
 import (
 	"errors"
 	"fmt"
-	"maps"
 	"math"
 	"os"
-	"slices"
 	"strings"
 	"testing"
 
@@ -60,31 +58,11 @@ func rows(t *testing.T) []row {
 	return out
 }
 
-// worst keeps the largest deviation by name.
-type worst map[string]float64
-
-func (w worst) String() string {
-	var out []string
-	for _, name := range slices.Sorted(maps.Keys(w)) {
-		out = append(out, fmt.Sprintf("%s %.3g", name, w[name]))
-	}
-	return strings.Join(out, ", ")
-}
-
-// check fails for a deviation beyond its bound, NaN too.
-func (w worst) check(t *testing.T, at any, name string, deviation, bound float64) {
-	t.Helper()
-	w[name] = max(w[name], math.Abs(deviation))
-	if !(math.Abs(deviation) <= bound) {
-		t.Errorf("%+v: %s is off by %.4g, more than %.4g", at, name, deviation, bound)
-	}
-}
-
 // TestAgainstTEOS10 holds every row within the largest deviations that were measured there:
 // 0.30 % in cp and 0.052 % in density. The salinity of a row is printed to 5e-7 kg/kg, which is
 // worth 0.003 J/(kg K) and 0.0004 kg/m³.
 func TestAgainstTEOS10(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	var start row
 	for _, r := range rows(t) {
 		if r.practical != start.practical || start.T == 0 {
@@ -92,20 +70,20 @@ func TestAgainstTEOS10(t *testing.T) {
 		}
 		f := mustNew(t, r.s)
 		s, one := mustAt(t, f, r.T, r.p), mustAt(t, f, r.T, atmosphere)
-		got.check(t, r, "cp", s.Cp/r.cp-1, 3.0e-3)
-		got.check(t, r, "density", s.Density/r.rho-1, 5.2e-4)
-		got.check(t, r, "correlation of cp in J/(kg K)", one.Cp-r.sharqawyCp, 0.0035)
-		got.check(t, r, "correlation of density in kg/m³", one.Density-r.sharqawyRho, 0.00045)
-		got.check(t, r, "correlation of UNESCO in J/(kg K)", unesco(r.practical, r.T)-r.unescoCp, 0.0006)
+		got.Check(t, r, "cp", s.Cp/r.cp-1, 3.0e-3)
+		got.Check(t, r, "density", s.Density/r.rho-1, 5.2e-4)
+		got.Check(t, r, "correlation of cp in J/(kg K)", one.Cp-r.sharqawyCp, 0.0035)
+		got.Check(t, r, "correlation of density in kg/m³", one.Density-r.sharqawyRho, 0.00045)
+		got.Check(t, r, "correlation of UNESCO in J/(kg K)", unesco(r.practical, r.T)-r.unescoCp, 0.0006)
 		if r.practical > 0 {
-			got.check(t, r, "cp from UNESCO", one.Cp/r.unescoCp-1, 2.05e-3)
+			got.Check(t, r, "cp from UNESCO", one.Cp/r.unescoCp-1, 2.05e-3)
 		}
 		if r.p == atmosphere {
-			got.check(t, r, "UNESCO from TEOS-10", r.unescoCp/r.cp-1, 1.1e-3)
+			got.Check(t, r, "UNESCO from TEOS-10", r.unescoCp/r.cp-1, 1.1e-3)
 		}
 		rise := s.Enthalpy - mustAt(t, f, start.T, start.p).Enthalpy
 		if r.T > start.T+5 {
-			got.check(t, r, "rise of h from 0 °C", rise/(r.h-start.h)-1, 3.0e-3)
+			got.Check(t, r, "rise of h from 0 °C", rise/(r.h-start.h)-1, 3.0e-3)
 		}
 		cp, density := f.Uncertainty(r.T, r.p)
 		if math.Sqrt(3)*cp < math.Abs(s.Cp/r.cp-1) || math.Sqrt(3)*density < math.Abs(s.Density/r.rho-1) {
@@ -117,7 +95,7 @@ func TestAgainstTEOS10(t *testing.T) {
 
 // A rise of pressure by 1 MPa at one temperature, from pairs of rows.
 func TestPressureTermAgainstTEOS10(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	all := rows(t)
 	for k := 1; k < len(all); k += 2 {
 		a, b := all[k-1], all[k]
@@ -126,9 +104,9 @@ func TestPressureTermAgainstTEOS10(t *testing.T) {
 		}
 		f := mustNew(t, a.s)
 		rise := mustAt(t, f, b.T, b.p).Enthalpy - mustAt(t, f, a.T, a.p).Enthalpy
-		got.check(t, b, "rise of h by pressure", rise/(b.h-a.h)-1, 0.016)
+		got.Check(t, b, "rise of h by pressure", rise/(b.h-a.h)-1, 0.016)
 		squeezed := mustAt(t, f, b.T, b.p).Density/mustAt(t, f, a.T, a.p).Density - 1
-		got.check(t, b, "rise of density by pressure", squeezed/(b.rho/a.rho-1)-1, 0.017) // 8e-6 of density
+		got.Check(t, b, "rise of density by pressure", squeezed/(b.rho/a.rho-1)-1, 0.017) // 8e-6 of density
 	}
 	t.Logf("worst relative deviation: %s", got)
 }
@@ -147,30 +125,30 @@ func unesco(practical, T float64) float64 {
 // Introductory Dynamical Oceanography, 2nd edition (1986), for the others. Our cp is another
 // correlation and stands within 0.20 % of them.
 func TestPublishedValuesOfUNESCO(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	for _, tt := range []struct{ practical, t68, cp float64 }{
 		{25, 0, 4048.44}, {25, 10, 4041.83}, {25, 20, 4044.84}, {25, 30, 4049.1}, {25, 40, 4051.22},
 		{35, 0, 3986.53}, {35, 10, 3986.34}, {35, 20, 3993.85}, {35, 30, 4000.68}, {35, 40, 4003.46}, {40, 40, 3980.051},
 	} {
 		T := zero + tt.t68/scale1968
-		got.check(t, tt, "formula of UNESCO in J/(kg K)", unesco(tt.practical, T)-tt.cp, 0.005)
+		got.Check(t, tt, "formula of UNESCO in J/(kg K)", unesco(tt.practical, T)-tt.cp, 0.005)
 		f := mustNew(t, tt.practical*35.16504/35e3)
-		got.check(t, tt, "cp", mustAt(t, f, T, atmosphere).Cp/tt.cp-1, 2.0e-3)
+		got.Check(t, tt, "cp", mustAt(t, f, T, atmosphere).Cp/tt.cp-1, 2.0e-3)
 	}
 	t.Logf("worst deviations, relative where no unit stands: %s", got)
 }
 
 // Without salt the correlations must meet water.
 func TestFreshWater(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	f, w := mustNew(t, 0), water.Liquid()
 	for T := zero; T <= maxT; T += 2.5 {
 		for _, p := range []float64{250e3, 1e6, 5e6, maxP} {
 			a, b := mustAt(t, f, T, p), mustAt(t, w, T, p)
 			at := fmt.Sprintf("%g K, %g Pa", T, p)
-			got.check(t, at, "cp", a.Cp/b.Cp-1, 3.0e-3)
-			got.check(t, at, "cv", a.Cv/b.Cv-1, 6.0e-3)
-			got.check(t, at, "density", a.Density/b.Density-1, 2.2e-4)
+			got.Check(t, at, "cp", a.Cp/b.Cp-1, 3.0e-3)
+			got.Check(t, at, "cv", a.Cv/b.Cv-1, 6.0e-3)
+			got.Check(t, at, "density", a.Density/b.Density-1, 2.2e-4)
 		}
 	}
 	t.Logf("worst relative deviations from IAPWS-IF97: %s", got)
@@ -253,11 +231,11 @@ func TestUncertainty(t *testing.T) {
 // The fall of cp from 1 to 12 MPa in fresh water, some 25 J/(kg K), is within 2 of that of
 // IAPWS-IF97 from 20 °C on; at 0 °C it is 34 and should be 52.
 func TestFallOfCp(t *testing.T) {
-	got := worst{}
+	got := fluidtest.Deviations{}
 	f, w := mustNew(t, 0), water.Liquid()
 	for T := zero + 20; T <= maxT; T += 10 {
 		fall := func(f thermo.Fluid) float64 { return mustAt(t, f, T, 1e6).Cp - mustAt(t, f, T, maxP).Cp }
-		got.check(t, T, "fall of cp in J/(kg K)", fall(f)-fall(w), 2)
+		got.Check(t, T, "fall of cp in J/(kg K)", fall(f)-fall(w), 2)
 	}
 	t.Logf("worst: %s", got)
 }

@@ -3,12 +3,11 @@
 package seawater
 
 import (
-	"bytes"
-	"encoding/json"
 	"math"
 	"math/rand/v2"
-	"os/exec"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // state of seawater as the outside programs read it.
@@ -20,27 +19,6 @@ type state struct {
 
 // figures of one state; what a program does not say stays 0.
 type figures struct{ Cp, H, Rho, Cv, Squeezed, Freezing float64 }
-
-// ask gives states to a Python program of Debian's and reads what it makes of them.
-func ask(t *testing.T, script, needs string, states []state) []figures {
-	t.Helper()
-	in, err := json.Marshal(states)
-	if err != nil {
-		t.Fatal(err)
-	}
-	var complaint bytes.Buffer
-	cmd := exec.Command("/usr/bin/python3", "-c", script)
-	cmd.Stdin, cmd.Stderr = bytes.NewReader(in), &complaint
-	out, err := cmd.Output()
-	if err != nil {
-		t.Fatalf("Debian's package %s: %v\n%s", needs, err, complaint.String())
-	}
-	var results []figures
-	if err := json.Unmarshal(out, &results); err != nil || len(results) != len(states) {
-		t.Fatalf("%s: %d results for %d states, %v", needs, len(results), len(states), err)
-	}
-	return results
-}
 
 func randomStates(seed uint64, n int, maxT, maxP, maxS float64) []state {
 	r := rand.New(rand.NewPCG(seed, 7))
@@ -72,19 +50,19 @@ print(json.dumps(out))
 // of 0.30 % comes from near there, where the pressure term is the whole of it.
 func TestAgainstTEOS10AtRandom(t *testing.T) {
 	states := randomStates(1, 3000, 313.15, maxP, 0.042)
-	got := worst{}
-	for k, r := range ask(t, gswScript, "python3-gsw", states) {
+	got := fluidtest.Deviations{}
+	for k, r := range fluidtest.Python[figures](t, "python3-gsw", gswScript, states) {
 		s := states[k]
 		f := mustNew(t, s.S)
 		a := mustAt(t, f, s.T, s.P)
 		cp, density := f.Uncertainty(s.T, s.P)
-		got.check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
-		got.check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
-		got.check(t, s, "rise of density by pressure", a.Density/mustAt(t, f, s.T, atmosphere).Density/r.Squeezed-1, 7.5e-5)
-		got.check(t, s, "cv", a.Cv/r.Cv-1, 5e-3)
-		got.check(t, s, "h in J/kg, beyond 0.30 % of the warming", max(math.Abs(a.Enthalpy-r.H)-3e-3*a.Cp*math.Abs(s.T-zero-base), 0), 0.016*(s.P-atmosphere)/1e3)
+		got.Check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
+		got.Check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
+		got.Check(t, s, "rise of density by pressure", a.Density/mustAt(t, f, s.T, atmosphere).Density/r.Squeezed-1, 7.5e-5)
+		got.Check(t, s, "cv", a.Cv/r.Cv-1, 5e-3)
+		got.Check(t, s, "h in J/kg, beyond 0.30 % of the warming", max(math.Abs(a.Enthalpy-r.H)-3e-3*a.Cp*math.Abs(s.T-zero-base), 0), 0.016*(s.P-atmosphere)/1e3)
 		lo, _ := f.Span(s.P)
-		got.check(t, s, "freezing point in K", lo-r.Freezing, 0.01)
+		got.Check(t, s, "freezing point in K", lo-r.Freezing, 0.01)
 	}
 	t.Logf("worst deviations at %d states, relative where no unit stands: %s", len(states), got)
 }
@@ -108,16 +86,16 @@ func gridStates(n int, maxT, maxP, maxS float64) []state {
 // of cp that is stated and the 0.1 % of the density correlation's authors.
 func TestBrineAgainstTEOS10(t *testing.T) {
 	states := append(gridStates(10, 313.15, maxP, maxSalinity), randomStates(2, 2000, 313.15, maxP, maxSalinity)...)
-	got := worst{}
-	for k, r := range ask(t, gswScript, "python3-gsw", states) {
+	got := fluidtest.Deviations{}
+	for k, r := range fluidtest.Python[figures](t, "python3-gsw", gswScript, states) {
 		s := states[k]
 		f := mustNew(t, s.S)
 		a := mustAt(t, f, s.T, s.P)
 		u, _ := f.Uncertainty(s.T, s.P)
-		got.check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*u)
-		got.check(t, s, "density", a.Density/r.Rho-1, 1e-3)
+		got.Check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*u)
+		got.Check(t, s, "density", a.Density/r.Rho-1, 1e-3)
 		lo, _ := f.Span(s.P)
-		got.check(t, s, "freezing point in K", lo-r.Freezing, 0.05)
+		got.Check(t, s, "freezing point in K", lo-r.Freezing, 0.05)
 	}
 	if math.Abs(got["cp"]-7.45e-3) > 5e-5 {
 		t.Errorf("cp is off by %.4g at worst, want the 0.75 %% that the package comment tells", got["cp"])
@@ -141,15 +119,15 @@ print(json.dumps(out))
 // is an extrapolation and is not compared.
 func TestHotBrineAgainstIAPWS(t *testing.T) {
 	states := randomStates(3, 300, 353.15, atmosphere, maxSalinity)
-	got := worst{}
-	for k, r := range ask(t, iapwsScript, "python3-iapws", states) {
+	got := fluidtest.Deviations{}
+	for k, r := range fluidtest.Python[figures](t, "python3-iapws", iapwsScript, states) {
 		s := states[k]
 		f := mustNew(t, s.S)
 		a := mustAt(t, f, s.T, s.P)
 		cp, density := f.Uncertainty(s.T, s.P)
-		got.check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
+		got.Check(t, s, "cp", a.Cp/r.Cp-1, math.Sqrt(3)*cp)
 		if s.T < 313.15 && s.S < 0.042 {
-			got.check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
+			got.Check(t, s, "density", a.Density/r.Rho-1, math.Sqrt(3)*density)
 		}
 	}
 	t.Logf("worst relative deviations at %d states: %s", len(states), got)

@@ -3,34 +3,31 @@
 package water
 
 import (
-	"bufio"
-	"bytes"
-	"fmt"
 	"math"
 	"math/rand/v2"
-	"os/exec"
-	"strings"
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // reference95 asks Debian's python3-iapws for IAPWS-95 (IAPWS R6-95(2018), the
 // scientific formulation that IF97 was fitted to): density, h, cp, cv. Its solver
-// sometimes returns a density that does not give the pressure back; that is "-".
+// sometimes returns a density that does not give the pressure back; that is null.
 const reference95 = `
-import sys, warnings
+import json, sys, warnings
 warnings.simplefilter("ignore")
 from iapws import IAPWS95
-for line in sys.stdin:
-    T, p = map(float, line.split())
+out = []
+for T, p in json.load(sys.stdin):
     try:
         s = IAPWS95(T=T, P=p / 1e6)
         if abs(IAPWS95(T=T, rho=s.rho).P * 1e6 / p - 1) > 1e-6:
             raise ValueError(s.rho)
-        print(repr(s.rho), repr(s.h * 1e3), repr(s.cp * 1e3), repr(s.cv * 1e3))
+        out.append({"density": s.rho, "enthalpy": s.h * 1e3, "cp": s.cp * 1e3, "cv": s.cv * 1e3})
     except Exception:
-        print("-")
+        out.append(None)
+print(json.dumps(out))
 `
 
 // asked is a state with our figures and those of the reference.
@@ -133,29 +130,15 @@ func nearby(r *rand.Rand) (T, p float64) {
 // compare fills in what IAPWS-95 gives, and returns for how many.
 func compare(t *testing.T, states []asked) (n int) {
 	t.Helper()
-	var in, complaint bytes.Buffer
+	var in [][2]float64
 	for _, s := range states {
-		fmt.Fprintf(&in, "%.17g %.17g\n", s.T, s.p)
+		in = append(in, [2]float64{s.T, s.p})
 	}
-	cmd := exec.Command("/usr/bin/python3", "-c", reference95)
-	cmd.Stdin, cmd.Stderr = &in, &complaint
-	out, err := cmd.Output()
-	if err != nil {
-		t.Fatalf("Debian's package python3-iapws: %v\n%s", err, complaint.String())
-	}
-	lines := bufio.NewScanner(bytes.NewReader(out))
-	for k := range states {
-		if !lines.Scan() {
-			t.Fatalf("%d answers to %d states", k, len(states))
+	for k, want := range fluidtest.Python[*thermo.Properties](t, "python3-iapws", reference95, in) {
+		if want != nil {
+			states[k].want = *want
+			n++
 		}
-		if lines.Text() == "-" {
-			continue
-		}
-		w := &states[k].want
-		if _, err := fmt.Fscan(strings.NewReader(lines.Text()), &w.Density, &w.Enthalpy, &w.Cp, &w.Cv); err != nil {
-			t.Fatalf("%q: %v", lines.Text(), err)
-		}
-		n++
 	}
 	return n
 }

@@ -4,34 +4,13 @@ package helmholtz
 
 import (
 	"bytes"
-	"encoding/json"
 	"math"
 	"math/rand/v2"
-	"os/exec"
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
-
-// python runs a script with python3-iapws, which reads in as JSON and prints its
-// answer as JSON.
-func python(t *testing.T, script string, in, out any) {
-	t.Helper()
-	text, err := json.Marshal(in)
-	if err != nil {
-		t.Fatal(err)
-	}
-	var complaint bytes.Buffer
-	cmd := exec.Command("/usr/bin/python3", "-c", script)
-	cmd.Stdin, cmd.Stderr = bytes.NewReader(text), &complaint
-	answer, err := cmd.Output()
-	if err != nil {
-		t.Fatalf("Debian's package python3-iapws: %v\n%s", err, complaint.String())
-	}
-	if err := json.Unmarshal(answer, out); err != nil {
-		t.Fatalf("answer %.200q: %v", answer, err)
-	}
-}
 
 // state is ours; the density goes to the other side and the pressure comes back,
 // so that neither side's search for a density is in the way.
@@ -95,9 +74,7 @@ print(json.dumps(out))
 // has its own copy of the coefficients.
 func TestAirAgainstIAPWS(t *testing.T) {
 	got := draw(t, Air(), 300, 100e6)
-	var want []state
-	python(t, airScript, got, &want)
-	worst := compare(got, want)
+	worst := compare(got, fluidtest.Python[state](t, "python3-iapws", airScript, got))
 	t.Logf("300 states, largest deviations: pressure %.1e, cp %.1e, cv %.1e, enthalpy %.1e of its span", worst.P, worst.Cp, worst.Cv, worst.H)
 	if !(worst.P < 1e-11 && worst.Cp < 1e-9 && worst.Cv < 1e-9 && worst.H < 1e-11) {
 		t.Error("more than rounding, and what the search for a density leaves in cp and cv")
@@ -178,8 +155,7 @@ func TestTermsAgainstIAPWS(t *testing.T) {
 		fluids = append(fluids, g)
 		in = append(in, publish(g, draw(t, f, 300, 100e6)))
 	}
-	var out [][]state
-	python(t, termsScript, in, &out)
+	out := fluidtest.Python[[]state](t, "python3-iapws", termsScript, in)
 	for i, f := range fluids {
 		worst := compare(in[i].States, out[i])
 		t.Logf("%-22s largest deviations: pressure %.1e, cp %.1e, cv %.1e, enthalpy %.1e of its span", f.name, worst.P, worst.Cp, worst.Cv, worst.H)
@@ -207,9 +183,7 @@ print(json.dumps(out))
 func TestAmmoniaAgainstOlderEquation(t *testing.T) {
 	f, _ := New("NH3")
 	got := draw(t, within{f, thermo.Bounds{MinT: 239, MaxT: 600, MinP: 1e3, MaxP: 8e6}}, 300, 8e6)
-	var want []state
-	python(t, ammoniaScript, got, &want)
-	worst := compare(got, want)
+	worst := compare(got, fluidtest.Python[state](t, "python3-iapws", ammoniaScript, got))
 	t.Logf("300 states to 8 MPa, largest deviations: pressure %.1e, cp %.1e, cv %.1e, enthalpy %.1e of its span", worst.P, worst.Cp, worst.Cv, worst.H)
 	if !(worst.P < 1e-3 && worst.Cp < 0.022 && worst.Cv < 0.027 && worst.H < 5e-3) {
 		t.Error("further apart than expected")
