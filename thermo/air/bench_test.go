@@ -5,20 +5,8 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
-
-var sink float64
-
-func benchmark(b *testing.B, at func(T, p float64) (thermo.Properties, error)) {
-	b.ReportAllocs()
-	T := 295.15
-	for b.Loop() {
-		s, _ := at(T, 101325)
-		sink += s.Enthalpy + s.Density + s.Cp
-		T += 1e-9 // never the same state twice
-	}
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
-}
 
 const benchRatio = 0.01
 
@@ -49,8 +37,14 @@ func naiveDewPoint(pw float64) float64 {
 	return hi
 }
 
-func BenchmarkMoist(b *testing.B)      { benchmark(b, mustMoist(b, benchRatio).At) }
-func BenchmarkMoistNaive(b *testing.B) { benchmark(b, naive) }
+var sink float64
+
+func BenchmarkMoist(b *testing.B) {
+	fluidtest.PerProperties(b, mustMoist(b, benchRatio), 295.15, thermo.Atmosphere)
+}
+func BenchmarkMoistNaive(b *testing.B) {
+	fluidtest.PerProperties(b, fluidtest.Form(naive), 295.15, thermo.Atmosphere)
+}
 
 // BenchmarkCarrying is the step from a humidity reading to its air.
 func BenchmarkCarrying(b *testing.B) {

@@ -5,9 +5,8 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
-
-var sink float64
 
 func BenchmarkSolution(b *testing.B) {
 	for _, tt := range []struct {
@@ -19,16 +18,7 @@ func BenchmarkSolution(b *testing.B) {
 		{"ammonia, may boil", "ammonia", 40e3},
 	} {
 		f := mustNew(b, tt.solute, 0.2, 0.006)
-		b.Run(tt.name, func(b *testing.B) {
-			b.ReportAllocs()
-			T := 280.0
-			for b.Loop() {
-				s, _ := f.At(T, tt.p)
-				sink += s.Enthalpy + s.Density + s.Cp
-				T += 1e-9 // never the same state twice
-			}
-			report(b)
-		})
+		b.Run(tt.name, func(b *testing.B) { fluidtest.PerProperties(b, f, 280, tt.p) })
 	}
 }
 
@@ -38,30 +28,16 @@ func BenchmarkNaive(b *testing.B) {
 	if err != nil {
 		b.Fatal(err)
 	}
-	b.ReportAllocs()
-	T := 280.0
-	for b.Loop() {
-		p := s.naive(T, pressure, 0.2)
-		sink += p.Enthalpy + p.Density + p.Cp
-		T += 1e-9
-	}
-	report(b)
+	naive := func(T, p float64) (thermo.Properties, error) { return s.naive(T, p, 0.2), nil }
+	fluidtest.PerProperties(b, fluidtest.Form(naive), 280, pressure)
 }
 
 func BenchmarkUncertainty(b *testing.B) {
 	f := mustNew(b, "ethylene glycol", 0.2, 0.006)
-	b.ReportAllocs()
-	T := 280.0
-	for b.Loop() {
+	fluidtest.PerState(b, 280, func(T float64) float64 {
 		cp, density := f.Uncertainty(T, pressure)
-		sink += cp + density
-		T += 1e-9
-	}
-	report(b)
-}
-
-func report(b *testing.B) {
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
+		return cp + density
+	})
 }
 
 // naive evaluates the polynomials term by term with math.Pow.

@@ -1,8 +1,10 @@
 package gas
 
-import "testing"
+import (
+	"testing"
 
-var sink float64
+	"heatreeve/thermo/fluidtest"
+)
 
 // BenchmarkState is one state of a flue gas at 1 atm and of a natural gas at 60 bar: h, cp, cv and
 // density together; and the same equations as they are printed.
@@ -21,28 +23,16 @@ func BenchmarkState(b *testing.B) {
 		}
 		f, n := mustNew(b, mixtures[bb.name], bb.model), naive{c.parts, bb.model == PengRobinson}
 		b.Run(bb.name+" "+bb.model.String(), func(b *testing.B) {
-			T := bb.T
-			perState(b, func() float64 {
-				T += 1e-9 // never the same state twice
+			fluidtest.PerState(b, bb.T, func(T float64) float64 {
 				s, _ := f.At(T, bb.p)
 				return s.Enthalpy + s.Density + s.Cp + s.Cv
 			})
 		})
 		b.Run(bb.name+" "+bb.model.String()+" naive", func(b *testing.B) {
-			T := bb.T
-			perState(b, func() float64 {
-				T += 1e-9
+			fluidtest.PerState(b, bb.T, func(T float64) float64 {
 				h, cp, cv, rho := n.at(T, bb.p)
 				return h + rho + cp + cv
 			})
 		})
 	}
-}
-
-func perState(b *testing.B, state func() float64) {
-	b.ReportAllocs()
-	for b.Loop() {
-		sink += state()
-	}
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
 }

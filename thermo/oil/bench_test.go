@@ -5,28 +5,15 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
-var sink float64
-
-func report(b *testing.B) {
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
+func BenchmarkPetroleum(b *testing.B) {
+	fluidtest.PerProperties(b, must(b)(Petroleum(850, 11.8, "crude oil")), 333, 1e6)
 }
-
-func bench(b *testing.B, f thermo.Fluid, T float64) {
-	b.ReportAllocs()
-	for b.Loop() {
-		s, _ := f.At(T, 1e6)
-		sink += s.Enthalpy + s.Cp + s.Density
-		T += 1e-9 // never the same state twice
-	}
-	report(b)
-}
-
-func BenchmarkPetroleum(b *testing.B) { bench(b, must(b)(Petroleum(850, 11.8, "crude oil")), 333) }
 
 func BenchmarkHeatTransfer(b *testing.B) {
-	bench(b, must(b)(HeatTransfer("diphenyl oxide/biphenyl eutectic")), 573)
+	fluidtest.PerProperties(b, must(b)(HeatTransfer("diphenyl oxide/biphenyl eutectic")), 573, 1e6)
 }
 
 // naive works the same equations from density and Watson factor at every state: h without
@@ -56,19 +43,15 @@ func TestNaiveAgrees(t *testing.T) {
 }
 
 func BenchmarkPetroleumNaive(b *testing.B) {
-	T := 333.0
-	for b.Loop() {
+	fluidtest.PerState(b, 333, func(T float64) float64 {
 		h, cp, rho := naive(850, 11.8, 613.9723, T)
-		sink += h + cp + rho
-		T += 1e-9
-	}
-	report(b)
+		return h + cp + rho
+	})
 }
 
 // A table read row by row, with straight lines: what the hand would do.
 func BenchmarkHeatTransferNaive(b *testing.B) {
-	T := 573.0
-	for b.Loop() {
+	fluidtest.PerState(b, 573, func(T float64) float64 {
 		var h float64
 		k := 0
 		for ; k < len(eutectic)-2 && eutectic[k+1][0] <= T; k++ {
@@ -77,8 +60,6 @@ func BenchmarkHeatTransferNaive(b *testing.B) {
 		a, c := eutectic[k], eutectic[k+1]
 		x := (T - a[0]) / (c[0] - a[0])
 		cp := a[1] + x*(c[1]-a[1])
-		sink += h + (T-a[0])*(a[1]+cp)/2 + cp + a[2] + x*(c[2]-a[2])
-		T += 1e-9
-	}
-	report(b)
+		return h + (T-a[0])*(a[1]+cp)/2 + cp + a[2] + x*(c[2]-a[2])
+	})
 }

@@ -5,35 +5,20 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
-var sink float64
-
-func report(b *testing.B) {
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
-}
-
-func bench(b *testing.B, f thermo.Fluid, T float64) {
-	b.ReportAllocs()
-	for b.Loop() {
-		s, _ := f.At(T, 101325)
-		sink += s.Enthalpy + s.Density + s.Cp
-		T += 1e-9 // never the same state twice
-	}
-	report(b)
-}
-
 func BenchmarkTable(b *testing.B) {
-	bench(b, mustNew(b, air(), Options{Phase: thermo.Gas, Pressure: 101325}), 633)
+	fluidtest.PerProperties(b, mustNew(b, air(), Options{Phase: thermo.Gas, Pressure: 101325}), 633, thermo.Atmosphere)
 }
 
 // With vapour pressures, in the stretch where the boiling point has to be worked out.
 func BenchmarkBoiling(b *testing.B) {
-	bench(b, mustNew(b, boilingOil(), Options{}), 391)
+	fluidtest.PerProperties(b, mustNew(b, boilingOil(), Options{}), 391, thermo.Atmosphere)
 }
 
 func BenchmarkPolynomial(b *testing.B) {
-	bench(b, mustPolynomial(b, liquidCp, liquidDensity, liquidRange), 433)
+	fluidtest.PerProperties(b, mustPolynomial(b, liquidCp, liquidDensity, liquidRange), 433, thermo.Atmosphere)
 }
 
 // naive is the table as one would write it down: the slopes anew at every state, the row
@@ -78,11 +63,8 @@ func TestNaiveAgrees(t *testing.T) {
 
 func BenchmarkNaive(b *testing.B) {
 	points := air()
-	T := 633.0
-	for b.Loop() {
+	fluidtest.PerState(b, 633, func(T float64) float64 {
 		h, cp, rho := naive(points, T)
-		sink += h + rho + cp
-		T += 1e-9
-	}
-	report(b)
+		return h + rho + cp
+	})
 }

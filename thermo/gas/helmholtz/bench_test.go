@@ -5,21 +5,12 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 var sink float64
 
-func benchmark(b *testing.B, at func(T, p float64) thermo.Properties, T, p float64) {
-	b.ReportAllocs()
-	for b.Loop() {
-		s := at(T, p)
-		sink += s.Enthalpy + s.Density + s.Cp
-		T += 1e-9 // never the same state twice
-	}
-	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N), "ns/state")
-}
-
-func states(b *testing.B, at func(f *fluid) func(T, p float64) thermo.Properties) {
+func states(b *testing.B, at func(f *fluid) fluidtest.Form) {
 	for _, c := range []struct {
 		formula string
 		T, p    float64
@@ -32,23 +23,18 @@ func states(b *testing.B, at func(f *fluid) func(T, p float64) thermo.Properties
 			if !ok {
 				f = Air()
 			}
-			benchmark(b, at(f.(*fluid)), c.T, c.p)
+			fluidtest.PerProperties(b, at(f.(*fluid)), c.T, c.p)
 		})
 	}
 }
 
 func BenchmarkGas(b *testing.B) {
-	states(b, func(f *fluid) func(T, p float64) thermo.Properties {
-		return func(T, p float64) thermo.Properties {
-			s, _ := f.At(T, p)
-			return s
-		}
-	})
+	states(b, func(f *fluid) fluidtest.Form { return f.At })
 }
 
 func BenchmarkGasNaive(b *testing.B) {
-	states(b, func(f *fluid) func(T, p float64) thermo.Properties {
-		return func(T, p float64) thermo.Properties { return naiveState(f, T, p) }
+	states(b, func(f *fluid) fluidtest.Form {
+		return func(T, p float64) (thermo.Properties, error) { return naiveState(f, T, p), nil }
 	})
 }
 
@@ -56,10 +42,7 @@ func BenchmarkLiquid(b *testing.B) {
 	for _, formula := range []string{"NH3", "CO2", "C3H8"} {
 		b.Run(formula, func(b *testing.B) {
 			f, _ := Liquid(formula)
-			benchmark(b, func(T, p float64) thermo.Properties {
-				s, _ := f.At(T, p)
-				return s
-			}, 270, 4e6)
+			fluidtest.PerProperties(b, f, 270, 4e6)
 		})
 	}
 }
