@@ -10,8 +10,8 @@ import (
 // {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}. A fuel is by volume, its elements
 // are by mass; the air is told by its excess or by the oxygen left in the flue gas.
 func flueGas(_ *reader, d declaration) thermo.Fluid {
-	o := d.v.object("fluids.*.flue gas")
 	before := len(d.v.faults)
+	o := d.v.object("fluids.*.flue gas")
 	fuel, air := o.fuel(), o.combustionAir()
 	model, ok := d.o.model()
 	if !ok || len(d.v.faults) > before {
@@ -39,7 +39,7 @@ func (o object) fuel() (f gas.Fuel) {
 			C: shares["C"], H: shares["H"], O: shares["O"], N: shares["N"], S: shares["S"], Water: shares["water"], Ash: shares["ash"],
 		}
 	default:
-		o.need("fuel", "the fuel by volume, such as fuel: {CH4: 92 %, C2H6: 8 %}; or its elements by mass, such as elements: {C: 86 %, H: 14 %}")
+		o.need("fuel", "the fuel by volume, such as fuel: {CH4: 92 %, C2H6: 8 %}; or its elements by mass, such as elements: {C: 86 %, H: 14 %}", "elements")
 	}
 	return f
 }
@@ -70,7 +70,7 @@ func (o object) combustionAir() (c gas.Combustion) {
 		}
 	}
 	if found == "" {
-		o.need("excess air", "the air beyond what the fuel needs, such as excess air: 15 %; or what is left of its oxygen, oxygen: 3 % of the dry flue gas or wet oxygen: 3 % of the flue gas as it is")
+		o.need("excess air", "the air beyond what the fuel needs, such as excess air: 15 %; or what is left of its oxygen, oxygen: 3 % of the dry flue gas or wet oxygen: 3 % of the flue gas as it is", "oxygen", "wet oxygen")
 	}
 	if v, ok := o.get("air humidity"); ok {
 		if q, ok := v.quantity(unit.Ratio); ok {

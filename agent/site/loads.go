@@ -94,7 +94,7 @@ func (o object) service(s *Stream) {
 		s.Gives = true
 	case isTaken:
 		takes.oneOf("heat")
-	case o.node.Kind == yaml.MappingNode:
+	case o.node.Kind == yaml.MappingNode && !o.misspelt([]string{"gives", "takes"}):
 		o.fault("wants gives: heat (a heating circuit) or takes: heat (a chilled circuit, a heated product)")
 	}
 }

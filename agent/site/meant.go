@@ -20,8 +20,8 @@ var otherwise = map[string][]string{
 	"oil": {"petroleum", "table"}, "brine": {"sodium chloride", "calcium chloride", "seawater"}, "milk": {"food"},
 }
 
-// meant is the hint at the keys that may have been meant by one that is unknown, or "".
-func meant(key string, allowed []string) string {
+// meant are the keys that one that is unknown was probably to be.
+func meant(key string, allowed []string) []string {
 	var names []string
 	for _, name := range otherwise[strings.ToLower(strings.ReplaceAll(key, "_", " "))] {
 		if slices.Contains(allowed, name) {
@@ -31,8 +31,5 @@ func meant(key string, allowed []string) string {
 	if len(names) == 0 {
 		names = near.Names(key, allowed)
 	}
-	if len(names) == 0 {
-		return ""
-	}
-	return "; near: " + list(names[:min(3, len(names))])
+	return names
 }

@@ -21,8 +21,8 @@ func moistAir(r *reader, d declaration) thermo.Fluid {
 		d.v.fault("want how humid the air is, such as {relative humidity: 50 %%, at: 25 °C}, found %s", d.v.kind())
 		return nil
 	}
-	o := d.v.object("fluids.*.moist air")
 	before := len(d.v.faults)
+	o := d.v.object("fluids.*.moist air")
 	var m thermo.Moisture
 	for _, w := range measures {
 		key := strings.ReplaceAll(w.key, "_", " ")
@@ -40,7 +40,7 @@ func moistAir(r *reader, d declaration) thermo.Fluid {
 		}
 	}
 	T, p := r.airState(o, m)
-	if m.Kind == 0 && len(o.has) == len(d.v.node.Content)/2 {
+	if m.Kind == 0 && !o.misspelt(airMeasures()) {
 		o.fault("does not say how humid the air is; want one of: %s", strings.Join(airMeasures(), ", "))
 	}
 	if len(d.v.faults) > before {

@@ -64,7 +64,7 @@ func (r *reader) moisture(o object, s *Stream) {
 			r.inUnits(v, s.Humidity, m.symbols)
 		}
 	}
-	if humid && s.HumidityKind == 0 && o.node.Kind == yaml.MappingNode {
+	if humid && s.HumidityKind == 0 && o.node.Kind == yaml.MappingNode && !o.misspelt(measureKeys()) {
 		o.fault("does not say how humid %s is at the inlet; want one of: %s, each a tag or a constant", s.FluidName, strings.Join(measureKeys(), ", "))
 	}
 	if v, ok := o.get("coil"); ok {

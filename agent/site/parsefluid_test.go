@@ -102,7 +102,13 @@ func TestParseFluidFaults(t *testing.T) {
 
 // One fault is told once.
 func TestParseFluidTellsAFaultOnce(t *testing.T) {
-	for _, text := range []string{"{moist air: 50 %}", "{gas: CH4 92 %}", "{food: milk}", "{flue gas: {fuel: natural gas, excess air: 15 %}}", "{water: }"} {
+	for _, text := range []string{
+		"{moist air: 50 %}", "{gas: CH4 92 %}", "{food: milk}", "{flue gas: {fuel: natural gas, excess air: 15 %}}", "{water: }",
+		"{moist air: {relative_humidity: 50 %, at: 20 °C}}", "{moist air: {relative humidity: 50 %, temperature: 20 °C}}", "{petroleum: {densty: 870 kg/m3}}",
+		"{petroleum: {api: 31}}", "{flue gas: {fuels: {CH4: 100 %}, excess air: 15 %}}", "{flue gas: {fuel: {CH4: 100 %}, O2: 3 %}}", "{food: {watr: 100 %}}",
+		"{table: {sorce: a sheet, phase: liquid, points: [[20 °C, 1.9 kJ/(kg K), 868 kg/m3], [80 °C, 2 kJ/(kg K), 830 kg/m3]]}}",
+		"{polynomial: {source: a sheet, phase: liquid, cp: [1880], rho: [881], range: [20 °C, 300 °C]}}",
+	} {
 		var faults Faults
 		if _, err := ParseFluid(text); !errors.As(err, &faults) || len(faults) != 1 {
 			t.Errorf("ParseFluid(%q) = %v; want one fault", text, err)

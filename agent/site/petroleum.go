@@ -12,8 +12,8 @@ import (
 // {density: 870 kg/m3, watson: 11.8, group: fuel oil}. Without a group it is the
 // distillate of its density; without a Watson factor cp is known by the density alone.
 func petroleum(_ *reader, d declaration) thermo.Fluid {
-	o := d.v.object("fluids.*.petroleum")
 	before := len(d.v.faults)
+	o := d.v.object("fluids.*.petroleum")
 	var group string
 	if v, ok := o.get("group"); ok {
 		group = productGroup(v)
@@ -69,7 +69,7 @@ func (o object) density15(group string) float64 {
 		}
 		return rho
 	default:
-		o.need("density", "the density at 15 °C such as density: 870 kg/m3, or api gravity: 31")
+		o.need("density", "the density at 15 °C such as density: 870 kg/m3, or api gravity: 31", "api gravity")
 	}
 	return 0
 }

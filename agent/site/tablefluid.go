@@ -11,8 +11,8 @@ import (
 // tabled is a fluid by a table of its own: temperature, cp and density a row, and for
 // a liquid, if it is known, the vapour pressure.
 func tabled(r *reader, d declaration) thermo.Fluid {
-	o := d.v.object("fluids.*.table")
 	before := len(d.v.faults)
+	o := d.v.object("fluids.*.table")
 	source, opts := r.described(o)
 	ps, ok := o.need("points", "rows of temperature, cp and density: - [20 °C, 4.18 kJ/(kg K), 998 kg/m3]")
 	if !ok {
@@ -29,8 +29,8 @@ func tabled(r *reader, d declaration) thermo.Fluid {
 // polynomial is a fluid by coefficients of its own in t = T − 273.15 K, lowest power first:
 // cp in J/(kg K) and density in kg/m³.
 func polynomial(r *reader, d declaration) thermo.Fluid {
-	o := d.v.object("fluids.*.polynomial")
 	before := len(d.v.faults)
+	o := d.v.object("fluids.*.polynomial")
 	source, opts := r.described(o)
 	cp := o.coefficients("cp", "coefficients of cp in J/(kg K) by powers of t in °C, the constant first: [1880, 3.6]")
 	density := o.coefficients("density", "coefficients of density in kg/m3 by powers of t in °C, the constant first: [881, -0.65]")

@@ -71,7 +71,8 @@ func (v value) entries() []entry {
 // object is a mapping whose keys are fixed.
 type object struct {
 	value
-	has map[string]entry
+	has   map[string]entry
+	meant []string // keys that unknown ones were probably to be
 }
 
 // object reads v as the block of that name; see [Keys]. An unknown key is a
@@ -81,10 +82,12 @@ func (v value) object(block string) object {
 }
 
 func (v value) objectOf(allowed []string) object {
-	o := object{v, make(map[string]entry)}
+	o := object{value: v, has: make(map[string]entry)}
 	for _, e := range v.entries() {
 		if !slices.Contains(allowed, e.name) {
-			e.key.fault("unknown key %q%s; allowed: %s", clip(e.name), meant(e.name, allowed), strings.Join(allowed, ", "))
+			guess := meant(e.name, allowed)
+			o.meant = append(o.meant, guess...)
+			e.key.fault("unknown key %q%s; allowed: %s", clip(e.name), hint(guess), strings.Join(allowed, ", "))
 			continue
 		}
 		o.has[e.name] = e
@@ -97,13 +100,19 @@ func (o object) get(key string) (value, bool) {
 	return e.value, ok
 }
 
-// need is get for a key that must be there; say tells how to write it.
-func (o object) need(key, say string) (value, bool) {
+// need is get for a key that must be there, or one of the others in its stead; say tells
+// how to write it. What an unknown key was probably to be is not told to be missing.
+func (o object) need(key, say string, others ...string) (value, bool) {
 	v, ok := o.get(key)
-	if !ok && o.node.Kind == yaml.MappingNode {
+	if !ok && !o.misspelt(append(others, key)) && o.node.Kind == yaml.MappingNode {
 		value{o.scope, o.node, join(o.path, key)}.fault("is missing; %s", say)
 	}
 	return v, ok
+}
+
+// misspelt tells whether an unknown key was probably to be one of these.
+func (o object) misspelt(keys []string) bool {
+	return slices.ContainsFunc(keys, func(k string) bool { return slices.Contains(o.meant, k) })
 }
 
 // items lists the values of a sequence.
@@ -213,8 +222,10 @@ func join(path, name string) string {
 }
 
 // nearOf is the hint at the names that may have been meant, or "".
-func nearOf(name string, known []string) string {
-	names := near.Names(name, known)
+func nearOf(name string, known []string) string { return hint(near.Names(name, known)) }
+
+// hint tells names that may have been meant, or is "".
+func hint(names []string) string {
 	if len(names) == 0 {
 		return ""
 	}
