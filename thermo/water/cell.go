@@ -27,7 +27,8 @@ func (c *liquidCell) at(x, y float64) (h, cp, density float64) {
 }
 
 // steamCell is liquidCell with more powers of pressure, and with the density over
-// the pressure in kg/(m³ Pa), which changes less than the density.
+// the pressure in kg/(m³ Pa), which changes less than the density. What both sums
+// have in common is written out: as functions it took steam 2 % more time.
 type steamCell struct {
 	h0 [5]float64
 	h1 [4]float64
@@ -57,24 +58,27 @@ type samples struct {
 	d [3][5]float64
 }
 
-func (c *liquidCell) fit(s *samples) {
-	along(c.h0[:], &s.h[0])
-	along(c.h1[:], &s.h[1])
-	along(c.h2[:], &s.h[2])
-	along(c.h3[:], &s.h[3])
-	along(c.d0[:], &s.d[0])
-	along(c.d1[:], &s.d[1])
-	along(c.d2[:], &s.d[2])
+// factors are the ones to fit to samples, of h and density.
+type factors struct {
+	h [4][]float64
+	d [3][]float64
 }
 
-func (c *steamCell) fit(s *samples) {
-	along(c.h0[:], &s.h[0])
-	along(c.h1[:], &s.h[1])
-	along(c.h2[:], &s.h[2])
-	along(c.h3[:], &s.h[3])
-	along(c.d0[:], &s.d[0])
-	along(c.d1[:], &s.d[1])
-	along(c.d2[:], &s.d[2])
+func (c *liquidCell) factors() factors {
+	return factors{[4][]float64{c.h0[:], c.h1[:], c.h2[:], c.h3[:]}, [3][]float64{c.d0[:], c.d1[:], c.d2[:]}}
+}
+
+func (c *steamCell) factors() factors {
+	return factors{[4][]float64{c.h0[:], c.h1[:], c.h2[:], c.h3[:]}, [3][]float64{c.d0[:], c.d1[:], c.d2[:]}}
+}
+
+func (f factors) fit(s *samples) {
+	for i := range s.h {
+		along(f.h[i], &s.h[i])
+	}
+	for i := range s.d {
+		along(f.d[i], &s.d[i])
+	}
 }
 
 // along sets f to the factors of y^k of the polynomial through the values at the

@@ -102,28 +102,23 @@ func (t *steamTable) Balance(T, p float64) (thermo.Balance, error) {
 }
 
 func (t *liquidTable) At(T, p float64) (thermo.Properties, error) {
-	s, err := t.liquid.At(T, p)
-	if err != nil {
-		return s, err
-	}
-	b, err := t.Balance(T, p)
-	return replaced(s, b, p), err
+	return replaced(t.liquid, t, T, p)
 }
 
 func (t *steamTable) At(T, p float64) (thermo.Properties, error) {
-	s, err := t.steam.At(T, p)
+	return replaced(t.steam, t, T, p)
+}
+
+// replaced puts the balance of a table in the place of that of its exact fluid. cv
+// goes with cp, so that it does not pass it at 4 °C, where both are the same.
+func replaced(exact thermo.Fluid, t thermo.Balancer, T, p float64) (thermo.Properties, error) {
+	s, err := exact.At(T, p)
 	if err != nil {
 		return s, err
 	}
 	b, err := t.Balance(T, p)
-	return replaced(s, b, p), err
-}
-
-// replaced puts a balance in the place of that of s. cv goes with cp, so that it
-// does not pass it at 4 °C, where both are the same.
-func replaced(s thermo.Properties, b thermo.Balance, p float64) thermo.Properties {
 	if b == (thermo.Balance{Enthalpy: s.Enthalpy, Cp: s.Cp, Density: s.Density}) {
-		return s
+		return s, err
 	}
-	return complete(b, p, b.Cp*(s.Cv/s.Cp))
+	return complete(b, p, b.Cp*(s.Cv/s.Cp)), err
 }
