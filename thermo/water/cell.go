@@ -58,27 +58,24 @@ type samples struct {
 	d [3][5]float64
 }
 
-// factors are the ones to fit to samples, of h and density.
-type factors struct {
-	h [4][]float64
-	d [3][]float64
+func (c *liquidCell) fit(s *samples) {
+	along(c.h0[:], &s.h[0])
+	along(c.h1[:], &s.h[1])
+	along(c.h2[:], &s.h[2])
+	along(c.h3[:], &s.h[3])
+	along(c.d0[:], &s.d[0])
+	along(c.d1[:], &s.d[1])
+	along(c.d2[:], &s.d[2])
 }
 
-func (c *liquidCell) factors() factors {
-	return factors{[4][]float64{c.h0[:], c.h1[:], c.h2[:], c.h3[:]}, [3][]float64{c.d0[:], c.d1[:], c.d2[:]}}
-}
-
-func (c *steamCell) factors() factors {
-	return factors{[4][]float64{c.h0[:], c.h1[:], c.h2[:], c.h3[:]}, [3][]float64{c.d0[:], c.d1[:], c.d2[:]}}
-}
-
-func (f factors) fit(s *samples) {
-	for i := range s.h {
-		along(f.h[i], &s.h[i])
-	}
-	for i := range s.d {
-		along(f.d[i], &s.d[i])
-	}
+func (c *steamCell) fit(s *samples) {
+	along(c.h0[:], &s.h[0])
+	along(c.h1[:], &s.h[1])
+	along(c.h2[:], &s.h[2])
+	along(c.h3[:], &s.h[3])
+	along(c.d0[:], &s.d[0])
+	along(c.d1[:], &s.d[1])
+	along(c.d2[:], &s.d[2])
 }
 
 // along sets f to the factors of y^k of the polynomial through the values at the

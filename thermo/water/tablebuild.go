@@ -12,7 +12,7 @@ type builder[C any] struct {
 	gas     bool                                  // cells hold the density over the pressure
 	maxT    float64                               // K, end of the region
 	limits  func(T1, T2 float64) (lo, hi float64) // Pa, of the region between two temperatures
-	factors func(*C) factors
+	fit     func(*C, *samples)
 	at      func(c *C, x, y float64) (h, cp, density float64)
 	most    int // cells of a table
 }
@@ -23,8 +23,8 @@ const clear = 1e-9
 
 var liquidBuilder = builder[liquidCell]{
 	balance: region1, maxT: region1MaxT, most: 2400,
-	limits:  func(_, T2 float64) (lo, hi float64) { return saturationPressure(T2), highestP },
-	factors: (*liquidCell).factors, at: (*liquidCell).at,
+	limits: func(_, T2 float64) (lo, hi float64) { return saturationPressure(T2), highestP },
+	fit:    (*liquidCell).fit, at: (*liquidCell).at,
 }
 
 var steamBuilder = builder[steamCell]{
@@ -38,7 +38,7 @@ var steamBuilder = builder[steamCell]{
 		}
 		return 0, highestP
 	},
-	factors: (*steamCell).factors, at: (*steamCell).at,
+	fit: (*steamCell).fit, at: (*steamCell).at,
 }
 
 // columns returns nil when all would be without cells.
@@ -85,7 +85,7 @@ func (b *builder[C]) cells(T, lo, height float64, n int) []C {
 		}
 		p := lo + (float64(k)+0.5)*height
 		s := b.sample(T, p, height)
-		b.factors(&cells[k]).fit(&s)
+		b.fit(&cells[k], &s)
 		if !b.good(&cells[k], T, p, height) {
 			return nil
 		}
