@@ -3,6 +3,7 @@ package site
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"heatreeve/thermo/unit"
@@ -61,7 +62,7 @@ func accuracyPart(s string, u unit.Unit, zero float64) (Accuracy, error) {
 	case !beginsNumber(s):
 		return Accuracy{}, fmt.Errorf("%q is no accuracy; %s", clip(s), accuracyForms)
 	case !relative:
-		q, err := positive(s, distances(u.Dimension))
+		q, err := distance(s, u)
 		return Accuracy{Abs: q, Zero: zero}, err
 	case strings.TrimSpace(of) == "reading" || strings.TrimSpace(of) == "rate":
 		q, err := fraction(share)
@@ -71,7 +72,7 @@ func accuracyPart(s string, u unit.Unit, zero float64) (Accuracy, error) {
 	if err != nil {
 		return Accuracy{}, err
 	}
-	span, err := positive(of, distances(u.Dimension))
+	span, err := distance(of, u)
 	return Accuracy{Abs: part * span, Zero: zero}, err
 }
 
@@ -95,6 +96,23 @@ func distances(d unit.Dimension) unit.Dimension {
 	return d
 }
 
+// distance reads how far a tag in u may be off. A ratio is in percent or by mass as u is: 2 %
+// of a humidity ratio would be 20 g/kg, and is meant to be of the reading or the span.
+func distance(s string, u unit.Unit) (float64, error) {
+	x, err := positive(s, distances(u.Dimension))
+	if err != nil || u.Dimension != unit.Ratio {
+		return x, err
+	}
+	q, err := unit.ParseAs(s, unit.Ratio)
+	switch share := slices.Contains(percent, q.Unit.Symbol); {
+	case err != nil || share == slices.Contains(percent, u.Symbol):
+		return x, err
+	case share:
+		return 0, fmt.Errorf("%v of what? the tag is in %v; want the error in %v, or the whole: %v of reading, or of the span such as %v of 20 g/kg", q, u, u, q, q)
+	}
+	return 0, fmt.Errorf("%v is by mass, and the tag is in %v; want the error in %v", q, u, u)
+}
+
 // positive reads a quantity as a distance: no offset, no barometer, not below
 // zero.
 func positive(s string, ds ...unit.Dimension) (float64, error) {
@@ -109,9 +127,12 @@ func positive(s string, ds ...unit.Dimension) (float64, error) {
 }
 
 func fraction(s string) (float64, error) {
-	q, err := positive(s, unit.Ratio)
-	if err == nil && q > 1 {
+	x, err := positive(s, unit.Ratio)
+	if err == nil && x > 1 {
 		err = fmt.Errorf("%s is more than the whole", clip(s))
 	}
-	return q, err
+	if q, bad := unit.ParseAs(s, unit.Ratio); err == nil && bad == nil && !slices.Contains(percent, q.Unit.Symbol) {
+		err = fmt.Errorf("%v is by mass; want %s", q, strings.Join(percent, ", "))
+	}
+	return x, err
 }

@@ -32,9 +32,9 @@ func (o object) fuel() (f gas.Fuel) {
 	case isGas && isElements:
 		elements.fault("stands beside fuel; a fuel is a gas by volume or its elements by mass")
 	case isGas:
-		f.Gas, _ = asGas.shares(species(), "shares by volume, such as {CH4: 92 %, C2H6: 8 %}")
+		f.Gas, _ = asGas.shares(species(), "shares by volume, such as {CH4: 92 %, C2H6: 8 %}", byVolume("; a fuel by mass is told by its elements"))
 	case isElements:
-		shares, _ := elements.shares(keys["fluids.*.flue gas.elements"], "shares by mass, such as {C: 86 %, H: 13 %, S: 1 %}")
+		shares, _ := elements.shares(keys["fluids.*.flue gas.elements"], "shares by mass, such as {C: 86 %, H: 13 %, S: 1 %}", byMass)
 		f.Mass = gas.Elements{
 			C: shares["C"], H: shares["H"], O: shares["O"], N: shares["N"], S: shares["S"], Water: shares["water"], Ash: shares["ash"],
 		}
@@ -66,7 +66,7 @@ func (o object) combustionAir() (c gas.Combustion) {
 			v.fault("stands beside %s; one of them tells the air", found)
 		default:
 			found = m.key
-			*m.to, _ = v.within(m.lo, m.hi, m.span, unit.Ratio)
+			*m.to, _ = v.part(m.lo, m.hi, m.span, "")
 		}
 	}
 	if found == "" {

@@ -160,7 +160,7 @@ func (r *reader) design(o object, d *Design) {
 		d.Duty = r.constant(v, unit.Power)
 	}
 	if v, ok := o.get("allow"); ok {
-		d.Allow, _ = v.within(1e-6, 1, "more than 0 % up to 100 %", unit.Ratio)
+		d.Allow, _ = v.part(1e-6, 1, "more than 0 % up to 100 %", "")
 	}
 	o.needs("duty", "allow")
 	o.needs("allow", "duty")

@@ -5,7 +5,6 @@ import (
 
 	"heatreeve/thermo"
 	"heatreeve/thermo/gas"
-	"heatreeve/thermo/unit"
 )
 
 // species are the gases of a mixture by formula, and dry air.
@@ -15,14 +14,18 @@ func species() []string { return append(gas.Species(), "dry air") }
 // which is by mole, unless by says that they are by mass; model says how the
 // properties are found, the best way for the gas and the state unless given.
 func mixture(_ *reader, d declaration) thermo.Fluid {
-	shares, ok := d.v.shares(species(), "shares by volume, such as {N2: 79 %, O2: 21 %}")
-	byMass, okBy := d.o.byMass()
+	isMass, okBy := d.o.isMass()
+	read := byVolume(", or beside it by: mass")
+	if isMass || !okBy {
+		read = byMass
+	}
+	shares, ok := d.v.shares(species(), "shares by volume, such as {N2: 79 %, O2: 21 %}", read)
 	model, okModel := d.o.model()
 	if !ok || !okBy || !okModel {
 		return nil
 	}
 	var err error
-	if byMass {
+	if isMass {
 		shares, err = gas.MoleFractions(shares)
 	}
 	var f thermo.Fluid
@@ -36,7 +39,7 @@ func mixture(_ *reader, d declaration) thermo.Fluid {
 	return f
 }
 
-func (o object) byMass() (is, ok bool) {
+func (o object) isMass() (is, ok bool) {
 	v, given := o.get("by")
 	if !given {
 		return false, true
@@ -62,7 +65,7 @@ func (o object) model() (gas.Model, bool) {
 }
 
 // shares reads parts of a whole by name; want tells how to write them.
-func (v value) shares(names []string, want string) (map[string]float64, bool) {
+func (v value) shares(names []string, want string, read basis) (map[string]float64, bool) {
 	if v.node.Kind != yaml.MappingNode {
 		v.fault("want %s, found %s", want, v.kind())
 		return nil, false
@@ -70,7 +73,7 @@ func (v value) shares(names []string, want string) (map[string]float64, bool) {
 	o := v.objectOf(names)
 	all := make(map[string]float64, len(o.has))
 	for name, e := range o.has {
-		if share, ok := e.within(0, 1, "0 % to 100 %", unit.Ratio); ok {
+		if share, ok := read(e.value, 0, 1, "0 % to 100 %"); ok {
 			all[name] = share
 		}
 	}

@@ -33,9 +33,8 @@ func moistAir(r *reader, d declaration) thermo.Fluid {
 			v.fault("is one measure too many; want one of: %s", strings.Join(airMeasures(), ", "))
 		default:
 			m.Kind = w.kind
-			if q, ok := v.quantity(w.is); ok {
+			if q, ok := v.quantity(w.is); ok && v.inUnits(q.Unit, w.symbols) && w.check(v, q, 0) {
 				m.Value = q.SI()
-				v.inUnits(q.Unit, w.symbols)
 			}
 		}
 	}

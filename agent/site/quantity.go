@@ -2,6 +2,8 @@ package site
 
 import (
 	"math"
+	"slices"
+	"strings"
 	"time"
 
 	"go.yaml.in/yaml/v3"
@@ -34,6 +36,35 @@ func (v value) within(lo, hi float64, span string, d unit.Dimension) (float64, b
 		return 0, false
 	}
 	return q.SI(), true
+}
+
+// percent are the units of a part of a whole that may be of its volume; g/kg is of its mass.
+var percent = []string{"%", "‰", "ppm"}
+
+// part is within for a part of a whole that is not of its mass; advice tells what else may
+// be done about one that is.
+func (v value) part(lo, hi float64, span, advice string) (float64, bool) {
+	x, ok := v.within(lo, hi, span, unit.Ratio)
+	if !ok {
+		return 0, false
+	}
+	if q, err := unit.ParseAs(v.node.Value, unit.Ratio); err == nil && !slices.Contains(percent, q.Unit.Symbol) {
+		v.fault("%v is by mass; want %s%s", q, strings.Join(percent, ", "), advice)
+		return 0, false
+	}
+	return x, true
+}
+
+// basis reads a share that is by mass or by volume.
+type basis func(v value, lo, hi float64, span string) (float64, bool)
+
+func byMass(v value, lo, hi float64, span string) (float64, bool) {
+	return v.within(lo, hi, span, unit.Ratio)
+}
+
+// byVolume is the basis that takes no share by mass; advice is as for [value.part].
+func byVolume(advice string) basis {
+	return func(v value, lo, hi float64, span string) (float64, bool) { return v.part(lo, hi, span, advice) }
 }
 
 // duration is within for a time.

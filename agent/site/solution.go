@@ -12,27 +12,27 @@ import (
 // strength, in the same percent; without one the strength is taken as exact.
 func solution(solute string) func(*reader, declaration) thermo.Fluid {
 	return func(_ *reader, d declaration) thermo.Fluid {
-		x, ok := d.v.quantity(unit.Ratio)
-		if !ok {
-			return nil
-		}
-		var u float64
-		if v, given := d.o.get("uncertainty"); given {
-			if u, ok = v.within(0, 0.1, "0 % to 10 %", unit.Ratio); !ok {
-				return nil
-			}
-		}
-		mix := aqueous.New
+		mix, read := aqueous.New, byMass
 		if v, given := d.o.get("by"); given {
 			by, ok := v.oneOf("mass", "volume")
 			if !ok {
 				return nil
 			}
 			if by == "volume" {
-				mix = aqueous.NewByVolume
+				mix, read = aqueous.NewByVolume, byVolume(", or by: mass in the place of by: volume")
 			}
 		}
-		f, err := mix(solute, x.SI(), u)
+		x, ok := read(d.v, 0, 1, "0 % to 100 %")
+		if !ok {
+			return nil
+		}
+		var u float64
+		if v, given := d.o.get("uncertainty"); given {
+			if u, ok = read(v, 0, 0.1, "0 % to 10 %"); !ok {
+				return nil
+			}
+		}
+		f, err := mix(solute, x, u)
 		if err != nil {
 			d.v.fault("%v", err)
 			return nil

@@ -64,20 +64,23 @@ func (r *reader) tagSource(v value, i int, allowed []unit.Dimension) (Source, un
 	return Source{Tag: i}, t.Unit.Dimension
 }
 
-// constant reads a quantity above zero, a pressure as absolute. It is 0 where
-// there is a fault.
+// constant reads a quantity above zero, a pressure as absolute; a ratio may be zero, as dry
+// air has it. It is 0 where there is a fault.
 func (r *reader) constant(v value, d unit.Dimension) float64 {
 	q, ok := v.quantity(d)
 	if !ok {
 		return 0
 	}
 	si := r.absolute(q)
-	if si <= 0 {
-		floor := "zero"
-		if d == unit.Pressure {
-			floor = "vacuum"
+	if si < 0 || si == 0 && d != unit.Ratio {
+		floor := "not above zero"
+		switch d {
+		case unit.Pressure:
+			floor = "not above vacuum"
+		case unit.Ratio:
+			floor = "below zero"
 		}
-		v.fault("%v is not above %s", q, floor)
+		v.fault("%v is %s", q, floor)
 		return 0
 	}
 	return si

@@ -23,6 +23,9 @@ func tabled(r *reader, d declaration) thermo.Fluid {
 		return nil
 	}
 	f, err := table.New(d.name, source, points, opts)
+	if err == nil {
+		o.checkMolarMass(f, opts.Pressure)
+	}
 	return ps.made(f, err)
 }
 
@@ -39,6 +42,9 @@ func polynomial(r *reader, d declaration) thermo.Fluid {
 		return nil
 	}
 	f, err := table.Polynomial(d.name, source, cp, density, opts)
+	if err == nil {
+		o.checkMolarMass(f, opts.Pressure)
+	}
 	return d.v.made(f, err)
 }
 
@@ -88,9 +94,7 @@ func (r *reader) described(o object) (source string, opts table.Options) {
 	if v, ok := o.get("boiling"); ok {
 		opts.Boiling = r.constant(v, unit.Temperature)
 	}
-	if v, ok := o.get("molar_mass"); ok {
-		opts.MolarMass, _ = v.within(1e-3, 0.999, "1 g/mol to 999 g/mol", unit.MolarMass)
-	}
+	opts.MolarMass = o.readMolarMass(opts.Phase)
 	if v, ok := o.get("range"); ok {
 		if lo, hi, ok := r.span(v, kelvin); ok {
 			opts.MinT, opts.MaxT = lo, hi
@@ -109,7 +113,7 @@ func (o object) relative(key string) float64 {
 	if !ok {
 		return 0
 	}
-	u, _ := v.within(1e-6, 0.2, "more than 0 % up to 20 %", unit.Ratio)
+	u, _ := v.part(1e-6, 0.2, "more than 0 % up to 20 %", "")
 	return u
 }
 
@@ -138,7 +142,7 @@ func (r *reader) tablePoints(v value) []table.Point {
 		T, _ := cells[0].quantity(unit.Temperature)
 		cp, _ := cells[1].quantity(unit.SpecificHeat)
 		rho, _ := cells[2].quantity(unit.Density)
-		p := table.Point{T: T.SI(), Cp: cp.SI(), Density: rho.SI()}
+		p := table.Point{T: r.absolute(T), Cp: cp.SI(), Density: rho.SI()}
 		if len(cells) == 4 {
 			p.VapourPressure = r.constant(cells[3], unit.Pressure)
 		}
