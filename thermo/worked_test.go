@@ -135,11 +135,7 @@ func (r example) mass(t *testing.T, f thermo.Fluid) float64 {
 
 func (r example) at(t *testing.T, f thermo.Fluid, T float64) thermo.Properties {
 	t.Helper()
-	s, err := f.At(T, r.Number("p_Pa"))
-	if err != nil {
-		t.Fatal(err)
-	}
-	return s
+	return fluidtest.Must(f.At(T, r.Number("p_Pa")))(t)
 }
 
 // fluidOf is one of the examples' own fluids, else the fluid of that name.
@@ -152,27 +148,21 @@ func fluidOf(own map[string]thermo.Fluid, name string) (thermo.Fluid, error) {
 
 func workedFluids(t *testing.T) map[string]thermo.Fluid {
 	t.Helper()
-	must := func(f thermo.Fluid, err error) thermo.Fluid {
-		if err != nil {
-			t.Fatal(err)
-		}
-		return f
-	}
 	fluids := map[string]thermo.Fluid{
-		"dry air":  must(gas.DryAir(gas.Ideal)),
-		"flue gas": must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal)),
-		"engine oil": must(table.New("engine oil", "constant cp as in the example", []table.Point{{T: 353, Cp: 2131, Density: 850}},
-			table.Options{MinT: 300, MaxT: 400})),
-		"methane by its reference equation":                        must(gas.New(map[string]float64{"CH4": 1}, gas.Reference)),
-		"carbon dioxide by its reference equation":                 must(gas.New(map[string]float64{"CO2": 1}, gas.Reference)),
-		"fuel oil of specific gravity 0.95 and Watson factor 11.5": must(oil.Petroleum(densityOf(0.95), 11.5, "fuel oil")),
-		"lubricating oil 880 kg/m3":                                must(oil.Petroleum(880, 0, "lubricating oil")),
-		"seawater 35 g/kg":                                         must(seawater.New(0.03516504)),
-		"moist air of 30 degC and 45 % relative humidity":          must(moist(thermo.RelativeHumidity, 0.45, 303.15)),
-		"moist air saturated at 2 degC":                            must(moist(thermo.RelativeHumidity, 1, 275.15)),
+		"dry air":  fluidtest.Must(gas.DryAir(gas.Ideal))(t),
+		"flue gas": fluidtest.Must(gas.New(map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.030}, gas.Ideal))(t),
+		"engine oil": fluidtest.Must(table.New("engine oil", "constant cp as in the example", []table.Point{{T: 353, Cp: 2131, Density: 850}},
+			table.Options{MinT: 300, MaxT: 400}))(t),
+		"methane by its reference equation":                        fluidtest.Must(gas.New(map[string]float64{"CH4": 1}, gas.Reference))(t),
+		"carbon dioxide by its reference equation":                 fluidtest.Must(gas.New(map[string]float64{"CO2": 1}, gas.Reference))(t),
+		"fuel oil of specific gravity 0.95 and Watson factor 11.5": fluidtest.Must(oil.Petroleum(densityOf(0.95), 11.5, "fuel oil"))(t),
+		"lubricating oil 880 kg/m3":                                fluidtest.Must(oil.Petroleum(880, 0, "lubricating oil"))(t),
+		"seawater 35 g/kg":                                         fluidtest.Must(seawater.New(0.03516504))(t),
+		"moist air of 30 degC and 45 % relative humidity":          fluidtest.Must(moist(thermo.RelativeHumidity, 0.45, 303.15))(t),
+		"moist air saturated at 2 degC":                            fluidtest.Must(moist(thermo.RelativeHumidity, 1, 275.15))(t),
 	}
 	for _, s := range []string{"N2", "CH4", "CO2", "H2O", "O2"} {
-		fluids[s] = must(gas.New(map[string]float64{s: 1}, gas.Ideal))
+		fluids[s] = fluidtest.Must(gas.New(map[string]float64{s: 1}, gas.Ideal))(t)
 	}
 	return fluids
 }

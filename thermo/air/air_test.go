@@ -13,11 +13,7 @@ import (
 
 func mustMoist(t testing.TB, w float64) thermo.Wet {
 	t.Helper()
-	f, err := Moist(w)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(Moist(w))(t)
 }
 
 func TestConformance(t *testing.T) {

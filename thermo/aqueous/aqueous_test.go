@@ -14,11 +14,7 @@ import (
 
 func mustNew(t testing.TB, solute string, x, u float64) thermo.Fluid {
 	t.Helper()
-	f, err := New(solute, x, u)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New(solute, x, u))(t)
 }
 
 func TestConformance(t *testing.T) {

@@ -15,20 +15,12 @@ const atm = 101325.0
 
 func mustProduct(t testing.TB, name string) thermo.Fluid {
 	t.Helper()
-	f, err := Product(name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(Product(name))(t)
 }
 
 func mustNew(t testing.TB, c Composition) thermo.Fluid {
 	t.Helper()
-	f, err := New(c)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New(c))(t)
 }
 
 func TestConformance(t *testing.T) {

@@ -12,11 +12,7 @@ import (
 
 func mustBurn(t testing.TB, fuel Fuel, c Combustion) Flue {
 	t.Helper()
-	f, err := FlueGas(fuel, c)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(FlueGas(fuel, c))(t)
 }
 
 func gasFuel(formula string) Fuel { return Fuel{Gas: map[string]float64{formula: 1}} }

@@ -17,11 +17,7 @@ var flue = map[string]float64{"N2": 0.712, "CO2": 0.086, "H2O": 0.172, "O2": 0.0
 
 func mustNew(t testing.TB, fractions map[string]float64, model Model) thermo.Fluid {
 	t.Helper()
-	f, err := New(fractions, model)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New(fractions, model))(t)
 }
 
 // mixtures are those that every model of mixtures is tried on.

@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 func TestNewRefuses(t *testing.T) {
@@ -151,11 +152,7 @@ func TestMoleFractions(t *testing.T) {
 
 func mustAir(t testing.TB, model Model) thermo.Fluid {
 	t.Helper()
-	f, err := DryAir(model)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(DryAir(model))(t)
 }
 
 // Dry air within another mixture is what it is made of.

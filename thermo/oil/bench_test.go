@@ -9,11 +9,11 @@ import (
 )
 
 func BenchmarkPetroleum(b *testing.B) {
-	fluidtest.PerProperties(b, must(b)(Petroleum(850, 11.8, "crude oil")), 333, 1e6)
+	fluidtest.PerProperties(b, fluidtest.Must(Petroleum(850, 11.8, "crude oil"))(b), 333, 1e6)
 }
 
 func BenchmarkHeatTransfer(b *testing.B) {
-	fluidtest.PerProperties(b, must(b)(HeatTransfer("diphenyl oxide/biphenyl eutectic")), 573, 1e6)
+	fluidtest.PerProperties(b, fluidtest.Must(HeatTransfer("diphenyl oxide/biphenyl eutectic"))(b), 573, 1e6)
 }
 
 // naive works the same equations from density and Watson factor at every state: h without
@@ -32,7 +32,7 @@ func naive(rho15, kw float64, k0, T float64) (h, cp, rho float64) {
 
 // The naive form is the same equation.
 func TestNaiveAgrees(t *testing.T) {
-	f := must(t)(Petroleum(850, 11.8, "crude oil"))
+	f := fluidtest.Must(Petroleum(850, 11.8, "crude oil"))(t)
 	for T := 260.0; T < 420; T += 7 {
 		s, err := f.At(T, thermo.Atmosphere)
 		h, cp, rho := naive(850, 11.8, 613.9723, T)

@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // Vapour pressures of n-hexane and n-decane by the Antoine equations of the NIST Chemistry
@@ -43,7 +44,7 @@ func TestVapourPressure(t *testing.T) {
 // A cut ends 30 K before a substance of its mean boiling point boils: one of Watson 12 and
 // 720 kg/m³ (SG 0.7203) has that at (12·0.7203)³/1.8 = 358.8 K and one atmosphere.
 func TestBoilingEndsThePhase(t *testing.T) {
-	f := must(t)(Petroleum(720, 12, "gasoline"))
+	f := fluidtest.Must(Petroleum(720, 12, "gasoline"))(t)
 	_, hi := f.Span(101325)
 	if math.Abs(hi-328.8) > 0.3 {
 		t.Errorf("ends at %.2f K, want 328.8", hi)
@@ -65,11 +66,11 @@ func TestBoilingEndsThePhase(t *testing.T) {
 }
 
 func TestBoilingIsNotKnownWithoutWatson(t *testing.T) {
-	f := must(t)(Petroleum(720, 0, "gasoline"))
+	f := fluidtest.Must(Petroleum(720, 0, "gasoline"))(t)
 	if _, hi := f.Span(1e4); !math.IsInf(hi, 1) || !strings.Contains(f.Source(), "boiling not known") {
 		t.Errorf("%s spans to %g K", f.Source(), hi)
 	}
-	if g := must(t)(Petroleum(720, 12, "gasoline")); strings.Contains(g.Source(), "not known") || !strings.Contains(g.Source(), "Lee and Kesler") {
+	if g := fluidtest.Must(Petroleum(720, 12, "gasoline"))(t); strings.Contains(g.Source(), "not known") || !strings.Contains(g.Source(), "Lee and Kesler") {
 		t.Error(g.Source())
 	}
 }

@@ -19,7 +19,7 @@ func TestPetroleumConformance(t *testing.T) {
 		{800, 11.8, "jet-kerosene"}, {950, 11.4, "fuel oil"}, {880, 0, "lubricating oil"}, {1050, 10, "fuel oil"}, {1150, 10.5, ""},
 		{650, 12.8, "naphtha"}, {740, 0, "gasoline"}, {990, 0, "heavy fuel oil"}, {690, 11.5, "gasoline"},
 	} {
-		f := must(t)(Petroleum(tt.density, tt.watson, tt.group))
+		f := fluidtest.Must(Petroleum(tt.density, tt.watson, tt.group))(t)
 		t.Run(f.Name(), func(t *testing.T) { fluidtest.Run(t, f) })
 	}
 }
@@ -37,7 +37,7 @@ func TestChosenCorrelation(t *testing.T) {
 			if watson == 0 && sg < cragoeMinSG {
 				continue
 			}
-			f := must(t)(Petroleum(rho15, watson, "crude oil"))
+			f := fluidtest.Must(Petroleum(rho15, watson, "crude oil"))(t)
 			s, err := f.At(T, maxPressure)
 			if want := r.Number(column); err != nil || math.Abs(s.Cp/want-1) > 3e-6 {
 				t.Errorf("%s at %g K: cp %.8g, %v; want %.8g", f.Name(), T, s.Cp, err, want)
@@ -55,12 +55,12 @@ func TestWorkedHeat(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	q, err := thermo.StreamHeat(must(t)(Petroleum(rho15, 11.5, "fuel oil")), 4/3.6, 333.15, 8e5, 383.15, 8e5)
+	q, err := thermo.StreamHeat(fluidtest.Must(Petroleum(rho15, 11.5, "fuel oil"))(t), 4/3.6, 333.15, 8e5, 383.15, 8e5)
 	if err != nil || math.Abs(q/110904.22-1) > 1e-6 {
 		t.Errorf("fuel oil: %.9g W, %v; want 110904.22", q, err)
 	}
 
-	lube := must(t)(Petroleum(880, 0, "lubricating oil"))
+	lube := fluidtest.Must(Petroleum(880, 0, "lubricating oil"))(t)
 	s, err := lube.At(338.15, 4e5)
 	m := 0.5 / 60 * s.Density
 	if err != nil || math.Abs(s.Density-848.30) > 0.005 || math.Abs(m/7.069161-1) > 1e-6 {
@@ -94,7 +94,7 @@ func TestPetroleumRefuses(t *testing.T) {
 
 // A light cut ends where its reduced temperature is 0.85, and the error says so.
 func TestLightCutEndsEarly(t *testing.T) {
-	f := must(t)(Petroleum(620, 13, "gasoline"))
+	f := fluidtest.Must(Petroleum(620, 13, "gasoline"))(t)
 	b := f.Bounds()
 	_, err := f.At(b.MaxT+1, atm)
 	if e := new(thermo.RangeError); !errors.As(err, &e) || b.MaxT > 410 || b.MaxT < 370 || !strings.HasPrefix(e.Why, "reduced temperature of 0.85") {
@@ -104,14 +104,14 @@ func TestLightCutEndsEarly(t *testing.T) {
 
 // The range of temperature: -18 °C to 150 °C, or to 0.85 of the critical temperature.
 func TestPetroleumRange(t *testing.T) {
-	if b := must(t)(Petroleum(850, 11.8, "")).Bounds(); b.MinT != 255.15 || b.MaxT != 423.15 || b.MaxP != 2.5e6 {
+	if b := fluidtest.Must(Petroleum(850, 11.8, ""))(t).Bounds(); b.MinT != 255.15 || b.MaxT != 423.15 || b.MaxP != 2.5e6 {
 		t.Errorf("%+v, want 255.15 to 423.15 K, 2.5 MPa", b)
 	}
 	rho15, err := DensityOfAPI(141.5/0.64-131.5, "gasoline")
 	if err != nil {
 		t.Fatal(err)
 	}
-	b := must(t)(Petroleum(rho15, 12.7, "gasoline")).Bounds()
+	b := fluidtest.Must(Petroleum(rho15, 12.7, "gasoline"))(t).Bounds()
 	tb := math.Pow(12.7*0.64, 3) / 1.8
 	tc := 189.8 + 450.6*0.64 + (0.4244+0.1174*0.64)*tb + (0.1441-1.0069*0.64)*1e5/tb
 	if math.Abs(b.MaxT-0.85*tc) > 0.01 || !(b.MaxT < 423) {

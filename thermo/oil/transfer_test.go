@@ -13,7 +13,7 @@ import (
 
 func TestTransferConformance(t *testing.T) {
 	for _, name := range HeatTransferLiquids() {
-		t.Run(name, func(t *testing.T) { fluidtest.Run(t, must(t)(HeatTransfer(name))) })
+		t.Run(name, func(t *testing.T) { fluidtest.Run(t, fluidtest.Must(HeatTransfer(name))(t)) })
 	}
 }
 
@@ -25,7 +25,7 @@ func TestTransferRows(t *testing.T) {
 	}
 	pressures := 0
 	for _, r := range all {
-		f := must(t)(HeatTransfer(r.Text("liquid")))
+		f := fluidtest.Must(HeatTransfer(r.Text("liquid")))(t)
 		T := r.Number("T_K")
 		s, err := f.At(T, 2e6)
 		if err != nil || math.Abs(s.Cp/r.Number("cp_J_per_kgK")-1) > 1e-14 || math.Abs(s.Density/r.Number("rho_kg_per_m3")-1) > 1e-14 {
@@ -56,7 +56,7 @@ func TestInterpolation(t *testing.T) {
 			r := l.rows[k]
 			kept = append(kept, table.Point{T: r[0], Cp: r[1], Density: r[2]})
 		}
-		f := must(t)(table.New(l.name, l.source, kept, table.Options{}))
+		f := fluidtest.Must(table.New(l.name, l.source, kept, table.Options{}))(t)
 		var line, cubic float64
 		for k := 1; k+1 < len(l.rows); k += 2 {
 			a, r, b := l.rows[k-1], l.rows[k], l.rows[k+1]
@@ -92,7 +92,7 @@ func TestTransferHeat(t *testing.T) {
 		{"mineral oil A", 11.72, 523.15, 473.15, -1541180},
 		{"modified terphenyl", 25, 593.15, 553.15, -2569375},
 	} {
-		q, err := thermo.StreamHeat(must(t)(HeatTransfer(tt.liquid)), tt.mass, tt.T1, 1e6, tt.T2, 1e6)
+		q, err := thermo.StreamHeat(fluidtest.Must(HeatTransfer(tt.liquid))(t), tt.mass, tt.T1, 1e6, tt.T2, 1e6)
 		t.Logf("%s: %.7g W, by straight lines %.7g", tt.liquid, q, tt.heat)
 		if err != nil || math.Abs(q/tt.heat-1) > 2e-4 {
 			t.Errorf("%s: %.9g W, %v; want %g", tt.liquid, q, err, tt.heat)
@@ -103,7 +103,7 @@ func TestTransferHeat(t *testing.T) {
 // The two mineral oils against Cragoe's correlation, which knows their density alone.
 func TestMineralOilsAgainstCragoe(t *testing.T) {
 	for name, limit := range map[string]float64{"mineral oil A": 0.012, "mineral oil B": 0.135} {
-		f := must(t)(HeatTransfer(name))
+		f := fluidtest.Must(HeatTransfer(name))(t)
 		b := f.Bounds()
 		c := f.(*mineral).other
 		var worst float64
@@ -151,7 +151,7 @@ func TestTransferNames(t *testing.T) {
 			t.Errorf("%q leads to %v, %v; want %q", other, f, err, name)
 		}
 	}
-	f := must(t)(HeatTransfer("diphenyl oxide/biphenyl eutectic"))
+	f := fluidtest.Must(HeatTransfer("diphenyl oxide/biphenyl eutectic"))(t)
 	if lo, hi := f.Span(atm); lo != 285.15 || math.Abs(hi-530.15) > 1 {
 		t.Errorf("the eutectic spans %g to %g K at 1 atm, want 285.15 to 530", lo, hi)
 	}
@@ -166,7 +166,7 @@ func TestTransferUncertainty(t *testing.T) {
 	for name, want := range map[string][2]float64{
 		"diphenyl oxide/biphenyl eutectic": {0.03, 0.015}, "modified terphenyl": {0.03, 0.01}, "mineral oil A": {0.05, 0.01}, "mineral oil B": {0.05, 0.01},
 	} {
-		f := must(t)(HeatTransfer(name))
+		f := fluidtest.Must(HeatTransfer(name))(t)
 		cp, density := f.Uncertainty(350, atm)
 		if r := math.Sqrt(3); math.Abs(cp*r-want[0]) > 1e-12 || math.Abs(density*r-want[1]) > 1e-12 {
 			t.Errorf("%s: half-widths %g, %g; want %g", name, cp*r, density*r, want)
@@ -182,7 +182,7 @@ func TestTransferUncertainty(t *testing.T) {
 // end; less for the others.
 func TestSpreadOfPressureTerm(t *testing.T) {
 	for name, limit := range map[string]float64{"diphenyl oxide/biphenyl eutectic": 1.05, "modified terphenyl": 0.55, "mineral oil A": 0.9, "mineral oil B": 0.25} {
-		f := must(t)(HeatTransfer(name))
+		f := fluidtest.Must(HeatTransfer(name))(t)
 		spread := f.(thermo.Compressed).PressureLaw().Spread * 1e3
 		t.Logf("%s: %.2f kJ/kg per MPa", name, spread)
 		if !(spread < limit && spread > 0.7*limit) {

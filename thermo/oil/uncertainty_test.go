@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	"heatreeve/thermo/fluidtest"
 )
 
 // The spread of the other correlations is the half-width, by hand from the table: SG 0.72,
@@ -18,16 +19,16 @@ func TestCpUncertainty(t *testing.T) {
 		cp, _ := f.Uncertainty(T, atm)
 		return cp * math.Sqrt(3)
 	}
-	if got := u(must(t)(Petroleum(950, 11.3693, "fuel oil")), 423.15); got != cpHalfWidth {
+	if got := u(fluidtest.Must(Petroleum(950, 11.3693, "fuel oil"))(t), 423.15); got != cpHalfWidth {
 		t.Errorf("SG 0.95: half-width %g, want %g", got, cpHalfWidth)
 	}
-	f := must(t)(Petroleum(950, 10, "fuel oil"))
+	f := fluidtest.Must(Petroleum(950, 10, "fuel oil"))(t)
 	sg := 0.9505 // at 60 °F
 	c, k := cragoe(sg), keslerLee(sg, 10)
 	if got, want := u(f, 300), c.at(300)/k.at(300)-1; math.Abs(got-want) > 2e-4 || want < 0.1 {
 		t.Errorf("aromatic: half-width %.5g, want that of Cragoe %.5g", got, want)
 	}
-	if known, unknown := u(must(t)(Petroleum(850, 11.8, "")), 300), u(must(t)(Petroleum(850, 0, "")), 300); !(unknown > known) {
+	if known, unknown := u(fluidtest.Must(Petroleum(850, 11.8, ""))(t), 300), u(fluidtest.Must(Petroleum(850, 0, ""))(t), 300); !(unknown > known) {
 		t.Errorf("half-width %g with and %g without the Watson factor", known, unknown)
 	}
 }
@@ -40,7 +41,7 @@ func TestSpreadIsCovered(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		f := must(t)(Petroleum(rho15, r.Number("Kw"), "crude oil"))
+		f := fluidtest.Must(Petroleum(rho15, r.Number("Kw"), "crude oil"))(t)
 		s, err := f.At(T, maxPressure)
 		if err != nil {
 			t.Fatal(err)
@@ -68,7 +69,7 @@ func TestDensityUncertainty(t *testing.T) {
 		{"", atm, math.Hypot(0.00137, (0.939785/0.933350-1)/math.Sqrt(3))},
 		{"fuel oil", atm + 2e6, math.Hypot(0.00137, 0.001992/math.Sqrt(3))},
 	} {
-		_, u := must(t)(Petroleum(900, 0, tt.group)).Uncertainty(373.15, tt.p)
+		_, u := fluidtest.Must(Petroleum(900, 0, tt.group))(t).Uncertainty(373.15, tt.p)
 		if math.Abs(u-tt.want) > 2e-5 {
 			t.Errorf("%q at %g Pa: %g, want %g", tt.group, tt.p, u, tt.want)
 		}
@@ -110,7 +111,7 @@ func TestUnknownWatson(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	u, _ := must(t)(Petroleum(rho15, 0, "crude oil")).Uncertainty(293.15, atm)
+	u, _ := fluidtest.Must(Petroleum(rho15, 0, "crude oil"))(t).Uncertainty(293.15, atm)
 	if got := u * math.Sqrt(3); math.Abs(got-0.0766) > 2e-4 {
 		t.Errorf("SG 0.85: half-width %.5f, want 0.0766", got)
 	}
@@ -119,7 +120,7 @@ func TestUnknownWatson(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	heavy := must(t)(Petroleum(rho15, 0, "fuel oil"))
+	heavy := fluidtest.Must(Petroleum(rho15, 0, "fuel oil"))(t)
 	u, _ = heavy.Uncertainty(423.15, atm)
 	c, farthest := cragoe(0.95), api7D22(0.95, 12.7)
 	if got, want := u*math.Sqrt(3), farthest.at(423.15)/c.at(423.15)-1; math.Abs(got-want) > 1e-5 {
@@ -135,7 +136,7 @@ func TestUnknownWatson(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	f := must(t)(Petroleum(rho15, 0, "fuel oil"))
+	f := fluidtest.Must(Petroleum(rho15, 0, "fuel oil"))(t)
 	usual, aromatic, paraffinic := keslerLee(0.99, 11.5), keslerLee(0.99, 10), keslerLee(0.99, 12.7)
 	s, err := f.At(293.15, atm)
 	u, _ = f.Uncertainty(293.15, atm)

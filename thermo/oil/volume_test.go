@@ -5,6 +5,8 @@ import (
 	"slices"
 	"strings"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // Every row: alpha and the volume correction to the digits printed, 5e-7, by way of the
@@ -26,7 +28,7 @@ func TestVolumeCorrection(t *testing.T) {
 		if a := g.alpha(rho15); math.Abs(a-r.Number("alpha15_per_K")) > 5.1e-10 {
 			t.Errorf("%s %g: alpha %.6g, want %s", g.name, rho15, a, r.Text("alpha15_per_K"))
 		}
-		s, err := must(t)(Petroleum(rho15, 12, r.Text("group"))).At(T, maxPressure)
+		s, err := fluidtest.Must(Petroleum(rho15, 12, r.Text("group")))(t).At(T, maxPressure)
 		if err != nil {
 			t.Error(err)
 			continue

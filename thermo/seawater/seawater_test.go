@@ -15,20 +15,12 @@ import (
 
 func mustNew(t testing.TB, salinity float64) thermo.Fluid {
 	t.Helper()
-	f, err := New(salinity)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New(salinity))(t)
 }
 
 func mustAt(t testing.TB, f thermo.Fluid, T, p float64) thermo.Properties {
 	t.Helper()
-	s, err := f.At(T, p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return s
+	return fluidtest.Must(f.At(T, p))(t)
 }
 
 func TestConformance(t *testing.T) {

@@ -16,11 +16,7 @@ const atm = 101325.0
 
 func mustNew(t testing.TB, name string) thermo.Fluid {
 	t.Helper()
-	f, err := New(name)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New(name))(t)
 }
 
 func TestConformance(t *testing.T) {
@@ -96,11 +92,7 @@ func TestTable(t *testing.T) {
 // enthalpyAbove is that of the row over 298.15 K.
 func enthalpyAbove(t *testing.T, f thermo.Fluid, r row) float64 {
 	t.Helper()
-	h, err := thermo.StreamHeat(f, 1, 298.15, atm, r.T, atm)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return h
+	return fluidtest.Must(thermo.StreamHeat(f, 1, 298.15, atm, r.T, atm))(t)
 }
 
 // How good are cubics where a source has no enthalpies? Drawn through the cp of the JANAF

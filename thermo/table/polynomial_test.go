@@ -20,11 +20,7 @@ var (
 
 func mustPolynomial(t testing.TB, cp, density []float64, o Options) thermo.Fluid {
 	t.Helper()
-	f, err := Polynomial("liquid", "invented", cp, density, o)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(Polynomial("liquid", "invented", cp, density, o))(t)
 }
 
 func TestPolynomialConformance(t *testing.T) {

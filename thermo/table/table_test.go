@@ -14,11 +14,7 @@ var oil = []Point{{T: 300, Cp: 2000, Density: 900}, {T: 350, Cp: 2200, Density: 
 
 func mustNew(t testing.TB, points []Point, o Options) thermo.Fluid {
 	t.Helper()
-	f, err := New("oil", "invented", points, o)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return f
+	return fluidtest.Must(New("oil", "invented", points, o))(t)
 }
 
 // air is an ideal gas of R = 287 J/(kg K) at 1 atm, whose cp rises by a parabola.
