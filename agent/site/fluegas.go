@@ -75,7 +75,7 @@ func (o object) combustionAir() (c gas.Combustion) {
 	if v, ok := o.get("air humidity"); ok {
 		if q, ok := v.quantity(unit.Ratio); ok {
 			v.inUnits(q.Unit, []string{"g/kg", "kg/kg"})
-			c.HumidityRatio = q.SI()
+			c.HumidityRatio = unit.Decimal(q.SI())
 		}
 	}
 	return c

@@ -34,7 +34,7 @@ func moistAir(r *reader, d declaration) thermo.Fluid {
 		default:
 			m.Kind = w.kind
 			if q, ok := v.quantity(w.is); ok && v.inUnits(q.Unit, w.symbols) && w.check(v, q, 0) {
-				m.Value = q.SI()
+				m.Value = unit.Decimal(q.SI())
 			}
 		}
 	}

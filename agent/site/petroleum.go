@@ -56,7 +56,7 @@ func (o object) density15(group string) float64 {
 		api.fault("stands beside density; one of the two is enough")
 	case isDensity:
 		q, _ := density.quantity(unit.Density)
-		return q.SI()
+		return unit.Decimal(q.SI())
 	case isAPI:
 		before := len(api.faults)
 		gravity := api.bareWithin(-100, 200)

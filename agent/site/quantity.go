@@ -35,7 +35,7 @@ func (v value) within(lo, hi float64, span string, d unit.Dimension) (float64, b
 		v.fault("%v is out of range; allowed: %s", q, span)
 		return 0, false
 	}
-	return q.SI(), true
+	return unit.Decimal(q.SI()), true
 }
 
 // percent are the units of a part of a whole that may be of its volume; g/kg is of its mass.

@@ -47,6 +47,6 @@ func saltWater(_ *reader, d declaration) thermo.Fluid {
 	if !ok {
 		return nil
 	}
-	f, err := seawater.New(q.SI())
+	f, err := seawater.New(unit.Decimal(q.SI()))
 	return d.v.made(f, err)
 }

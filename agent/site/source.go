@@ -71,7 +71,7 @@ func (r *reader) constant(v value, d unit.Dimension) float64 {
 	if !ok {
 		return 0
 	}
-	si := r.absolute(q)
+	si := unit.Decimal(r.absolute(q))
 	if si < 0 || si == 0 && d != unit.Ratio {
 		floor := "not above zero"
 		switch d {

@@ -97,7 +97,7 @@ func (r *reader) described(o object) (source string, opts table.Options) {
 	opts.MolarMass = o.readMolarMass(opts.Phase)
 	if v, ok := o.get("range"); ok {
 		if lo, hi, ok := r.span(v, kelvin); ok {
-			opts.MinT, opts.MaxT = lo, hi
+			opts.MinT, opts.MaxT = unit.Decimal(lo), unit.Decimal(hi)
 		}
 	}
 	if v, ok := o.get("uncertainty"); ok {
@@ -142,7 +142,7 @@ func (r *reader) tablePoints(v value) []table.Point {
 		T, _ := cells[0].quantity(unit.Temperature)
 		cp, _ := cells[1].quantity(unit.SpecificHeat)
 		rho, _ := cells[2].quantity(unit.Density)
-		p := table.Point{T: r.absolute(T), Cp: cp.SI(), Density: rho.SI()}
+		p := table.Point{T: unit.Decimal(T.SI()), Cp: cp.SI(), Density: rho.SI()}
 		if len(cells) == 4 {
 			p.VapourPressure = r.constant(cells[3], unit.Pressure)
 		}

@@ -204,12 +204,8 @@ func (r *reader) span(v value, u unit.Unit) (lo, hi float64, ok bool) {
 	return ends[0], ends[1], true
 }
 
-// absolute is the SI value with the barometer under a gauge pressure. A temperature is
-// rounded to 1 nK, so that the last bit of a sum with 273.15 K is in no message.
+// absolute is the SI value with the barometer under a gauge pressure.
 func (r *reader) absolute(q unit.Quantity) float64 {
-	if q.Unit.Dimension == unit.Temperature {
-		return math.Round(1e9*q.SI()) / 1e9
-	}
 	if q.Unit.Gauge {
 		r.gauge = true
 		return q.SI() + r.site.Barometer

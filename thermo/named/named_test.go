@@ -204,6 +204,8 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"nitrogn", []string{`near: "nitrogen"`}},
 		{"unobtainium", []string{`"unobtainium" is not known; one of your own is declared by its figures, {table: ...} or {polynomial: ...}; known: water`}},
 		{"propylene glycol", []string{"wants its strength as well", `write "propylene glycol `}},
+		{"moist air 350 g/kg", []string{"humidity ratio 0.35 kg/kg is outside of 0 to 0.25"}},
+		{"ethylene glycol 69 %", []string{"mass fraction 0.69; "}},
 		{"propylene glycol 32", []string{"propylene glycol: ", "unit is missing", `write "propylene glycol `}},
 		{"propylene glycol 32,5 %", []string{"decimal separator must be a point"}},
 		{"propylene glycol 99 %", []string{"0.99"}},

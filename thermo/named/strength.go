@@ -19,6 +19,9 @@ type strength struct {
 	watson   float64 // of a petroleum; 0: not told
 }
 
+// SI is the quantity in its SI unit, as it would be written there.
+func (s strength) SI() float64 { return unit.Decimal(s.Quantity.SI()) }
+
 // share is what stands between the number and "%" or behind it to say of what.
 var share = regexp.MustCompile(`(?i)^(.*?)[\s-]*(?:(vol(?:ume)?|mass|wt|weight|v/v|w/w|m/m)[\s.-]*%|` +
 	`%[\s-]*\(?(?:by[\s-]+)?(vol(?:ume)?|mass|wt|weight|abv|v/v|w/w|m/m)\.?\)?)\s*$`)

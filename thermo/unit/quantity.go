@@ -3,6 +3,7 @@ package unit
 import (
 	"fmt"
 	"math"
+	"strconv"
 	"strings"
 	"unicode/utf8"
 )
@@ -15,6 +16,18 @@ type Quantity struct {
 
 // SI is the quantity in the SI unit of its dimension; see [Unit.SI].
 func (q Quantity) SI() float64 { return q.Unit.SI(q.Value) }
+
+// Decimal rounds an SI value to 15 digits, which takes off what a conversion leaves in the
+// last bits: 35 % is 0.35 then and -20 °C 253.15 K. It is for figures that a person wrote;
+// those of a tag and of its range go by [Unit.SI] alone, or a reading at the very end of
+// the range may lie beyond it.
+func Decimal(si float64) float64 {
+	x, err := strconv.ParseFloat(strconv.FormatFloat(si, 'g', 15, 64), 64)
+	if err != nil { // beyond the largest number there is
+		return si
+	}
+	return x
+}
 
 // String writes the quantity so that [Parse] reads it back.
 func (q Quantity) String() string { return show(q.Value) + " " + q.Unit.Symbol }

@@ -226,3 +226,26 @@ func ExampleUnit_Of() {
 	fmt.Println(kW.Of(163602), kW)
 	// Output: 163.602 kW
 }
+
+// What a person wrote in decimals is in SI what they would have written there.
+func TestDecimal(t *testing.T) {
+	for text, want := range map[string]float64{
+		"35 %": 0.35, "350 g/kg": 0.35, "69 %": 0.69, "-20 °C": 253.15, "10 ppm": 1e-5, "0.1 %": 1e-3, "0 %": 0, "1 K": 1, "-20 kPa": -20e3,
+	} {
+		q, err := Parse(text)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := Decimal(q.SI()); got != want {
+			t.Errorf("%s is %v, want %v", text, got, want)
+		}
+	}
+	for _, x := range []float64{math.Inf(1), math.Inf(-1), math.MaxFloat64, -math.MaxFloat64} {
+		if got := Decimal(x); math.Signbit(got) != math.Signbit(x) || math.Abs(got) < 1e308 {
+			t.Errorf("%v becomes %v", x, got)
+		}
+	}
+	if got := Decimal(math.NaN()); !math.IsNaN(got) {
+		t.Errorf("no number becomes %v", got)
+	}
+}
