@@ -16,11 +16,12 @@ type Combustion struct {
 	DryO2         float64 // mole fraction of O2 in the dry flue gas; 0: not given
 	WetO2         float64 // mole fraction of O2 in the flue gas as it is; 0: not given
 	HumidityRatio float64 // kg of vapour per kg of dry air
+	Model         Model   // how the properties of the flue gas are found
 }
 
 // Flue is a flue gas.
 type Flue struct {
-	Fluid             thermo.Fluid       // by the model Best
+	Fluid             thermo.Fluid       // by the model of the Combustion
 	Fractions         map[string]float64 // mole fractions, water vapour among them
 	PerFuel           float64            // kg of flue gas per kg of fuel
 	DryAir            float64            // kg of dry air burnt with, per kg of fuel
@@ -31,8 +32,8 @@ type Flue struct {
 // FlueGas returns the flue gas of a complete combustion: all carbon to CO2, hydrogen to H2O,
 // sulfur to SO2, nitrogen to N2, with the rest of the air. There is no CO, soot, NOx or SO3, ash
 // leaves as a solid, and HCl in the fuel stays as it is. The acid dew point that SO3 would
-// make is not modelled. The error says which figure of fuel or air is out of range, or that
-// nothing burns.
+// make is not modelled. The error says which figure of fuel or air is out of range, that
+// nothing burns, or that the model is not for a mixture.
 func FlueGas(fuel Fuel, c Combustion) (Flue, error) {
 	if err := c.check(); err != nil {
 		return Flue{}, err
@@ -59,9 +60,12 @@ func FlueGas(fuel Fuel, c Combustion) (Flue, error) {
 		ExcessAir:         moles/least - 1,
 	}
 	f.Fractions, f.PerFuel = b.shares()
-	gas, err := New(f.Fractions, Best)
+	gas, err := New(f.Fractions, c.Model)
+	if err != nil {
+		return Flue{}, err
+	}
 	f.Fluid = burntGas{gas}
-	return f, err
+	return f, nil
 }
 
 // burntGas tells its reader what it is taken to be.

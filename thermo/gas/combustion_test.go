@@ -165,6 +165,26 @@ func TestFlueOfLeanGas(t *testing.T) {
 	}
 }
 
+// A flue gas by a model is what New makes of its fractions by that model, and still says of
+// what it is.
+func TestFlueGasByModel(t *testing.T) {
+	for _, model := range []Model{Best, Ideal, PengRobinson} {
+		f := mustBurn(t, gasFuel("CH4"), Combustion{ExcessAir: 0.15, Model: model})
+		g, err := New(f.Fractions, model)
+		if err != nil {
+			t.Fatal(err)
+		}
+		got, err1 := f.Fluid.At(473.15, 101325)
+		want, err2 := g.At(473.15, 101325)
+		if err1 != nil || err2 != nil || got != want {
+			t.Errorf("%v: %+v, %v; want %+v, %v", model, got, err1, want, err2)
+		}
+		if !strings.HasPrefix(f.Fluid.Source(), "products of a complete combustion") || !strings.HasSuffix(f.Fluid.Source(), g.Source()) {
+			t.Errorf("%v: source %q", model, f.Fluid.Source())
+		}
+	}
+}
+
 func TestFlueGasRefuses(t *testing.T) {
 	for _, tt := range []struct {
 		fuel Fuel
@@ -180,6 +200,7 @@ func TestFlueGasRefuses(t *testing.T) {
 		{Fuel{Mass: Elements{C: 0.5, H: 0.1}}, Combustion{}, "add up to 0.6"},
 		{Fuel{Mass: Elements{C: 1.5, H: -0.5}}, Combustion{}, "a share is 1.5"},
 		{Fuel{Mass: Elements{C: math.NaN()}}, Combustion{}, "a share is NaN"},
+		{gasFuel("CH4"), Combustion{Model: Reference}, "no reference equation of state"},
 		{gasFuel("CH4"), Combustion{ExcessAir: -0.1}, "excess air is -0.1"},
 		{gasFuel("CH4"), Combustion{ExcessAir: math.NaN()}, "excess air is NaN"},
 		{gasFuel("CH4"), Combustion{DryO2: 3}, "oxygen in the dry flue gas is 3"},
