@@ -17,12 +17,9 @@ func flueGas(_ *reader, d declaration) thermo.Fluid {
 	if !ok || len(d.v.faults) > before {
 		return nil
 	}
+	air.Model = model
 	flue, err := gas.FlueGas(fuel, air)
-	f := flue.Fluid
-	if err == nil && model != gas.Best {
-		f, err = gas.New(flue.Fractions, model)
-	}
-	return d.v.made(f, err)
+	return d.v.made(by(model, flue.Fluid, err))
 }
 
 func (o object) fuel() (f gas.Fuel) {

@@ -32,11 +32,7 @@ func mixture(_ *reader, d declaration) thermo.Fluid {
 	if err == nil {
 		f, err = gas.New(shares, model)
 	}
-	if err != nil {
-		d.v.fault("%v", err)
-		return nil
-	}
-	return f
+	return d.v.made(by(model, f, err))
 }
 
 func (o object) isMass() (is, ok bool) {

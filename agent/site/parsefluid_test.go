@@ -8,6 +8,7 @@ import (
 	"strings"
 	"testing"
 
+	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
 )
 
@@ -23,7 +24,9 @@ func TestParseFluid(t *testing.T) {
 		{"MEG: 40 %", "ethylene glycol 40 %"},
 		{"crude oil, API: 31", "crude oil 870.304 kg/m³"},
 		{"{gas: {N2: 100 %}}", "nitrogen"},
-		{"{gas: {N2: 76.8 %, O2: 23.2 %}, by: mass, model: ideal}", "gas: {N2: 79.09 %, O2: 20.91 %}"},
+		{"{gas: {N2: 76.8 %, O2: 23.2 %}, by: mass, model: ideal}", "gas: {N2: 79.09 %, O2: 20.91 %}, model: ideal"},
+		{"{gas: {N2: 100 %}, model: reference}", "nitrogen, model: reference"},
+		{"{gas: {N2: 100 %}, model: best}", "nitrogen"},
 		{"{flue gas: {fuel: {CH4: 100 %}, excess air: 0 %}}", "gas: {N2: 70.68 %, H2O: 18.96 %, CO2: 9.51 %, Ar: 0.8477 %}"},
 		{"{flue gas: {fuel: {CH4: 100 %}, wet oxygen: 1.73877 %}}", "gas: {N2: 71.3 %, H2O: 17.39 %, CO2: 8.723 %, O2: 1.739 %, Ar: 0.8551 %}"},
 		{"{moist air: {humidity ratio: 8 g/kg}}", "moist air 8 g/kg"},
@@ -168,4 +171,32 @@ func ExampleParseFluid() {
 	// Output:
 	// gas: {N2: 79 %, O2: 21 %}
 	// propylene glycol: "32": unit is missing; allowed here: ratio (%, ‰, ppm, kg/kg, g/kg); write "propylene glycol 20 %"; "%" is by mass, "vol %" by volume
+}
+
+// A model that was chosen leaves the flue gas what it is, and its figures are those of its
+// properties.
+func TestFlueGasByAModel(t *testing.T) {
+	const flue = "{flue gas: {fuel: {CH4: 100 %}, excess air: 15 %}, model: "
+	at := make(map[string]float64)
+	for _, model := range []string{"best", "ideal", "peng-robinson"} {
+		f, err := ParseFluid(flue + model + "}")
+		if err != nil {
+			t.Fatal(err)
+		}
+		if !strings.HasPrefix(f.Source(), "products of a complete combustion") || strings.Contains(f.Name(), "model: "+model) != (model != "best") {
+			t.Errorf("%s: %q of %q", model, f.Name(), f.Source())
+		}
+		s, err := f.At(473.15, 101325)
+		b, errBalance := thermo.BalanceOf(f)(473.15, 101325)
+		if err != nil || errBalance != nil || b.Enthalpy != s.Enthalpy || b.Cp != s.Cp || b.Density != s.Density {
+			t.Errorf("%s: %+v, %v and %+v, %v", model, s, err, b, errBalance)
+		}
+		at[model] = s.Density
+	}
+	if at["ideal"] == at["best"] || at["peng-robinson"] != at["best"] {
+		t.Errorf("densities %v: the best of a mixture is Peng-Robinson, and no ideal gas", at)
+	}
+	if f, err := ParseFluid(flue + "reference}"); err == nil || !strings.Contains(err.Error(), "no reference equation") {
+		t.Errorf("a flue gas by a reference equation: %v, %v", f, err)
+	}
 }
