@@ -75,6 +75,9 @@ func (c *call) readFlow(h *hand, flow, meterAt string) (err error) {
 	switch meterAt {
 	case "", "inlet":
 	case "outlet":
+		if h.flow.Unit.Dimension != unit.VolumeFlow {
+			return wrongf("heatreeve duty: --meter-at outlet is about a volume flow, and --flow %v is a %s, which is the same at either end", h.flow, h.flow.Unit.Dimension)
+		}
 		h.stream.MeterAtOutlet = true
 	default:
 		return wrongf("heatreeve duty: --meter-at %q is not known; allowed: inlet, outlet", meterAt)
@@ -117,6 +120,9 @@ func (h *hand) work() error {
 			return h.refusal(err)
 		}
 		h.notes = append(h.notes, fmt.Sprintf("%v; the agent would not book it", refused))
+	}
+	if r.Duty == 0 {
+		r.Duty = 0 // without a sign
 	}
 	h.Result = r
 	if h.stream.FlowKind == loads.VolumeFlow && !h.told {

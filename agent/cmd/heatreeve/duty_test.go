@@ -161,7 +161,14 @@ func TestFluidCommandsRefuse(t *testing.T) {
 		{[]string{"properties"}, exitWrong, "the fluid, such as water"},
 		{[]string{"properties", "water"}, exitWrong, "--temperature is missing"},
 		{[]string{"properties", "water", "--temperature", "20"}, exitWrong, "unit is missing"},
-		{[]string{"properties", "water", "--temperature", "20 °C,"}, exitWrong, "--temperature is missing"},
+		{[]string{"properties", "water", "--temperature", "20 °C,"}, exitWrong, `--temperature "20 °C," has a comma without a temperature on either side`},
+		{[]string{"properties", "water", "--tempreature", "20 °C"}, exitWrong, "unknown option --tempreature; near: --temperature; see"},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--barometer", "banana"}, exitWrong, `--barometer "banana"`},
+		{[]string{"properties", "water", "--temperature", "20 °C", "--barometer", "1 barg"}, exitWrong, "--barometer 1 barg is no pressure of the air"},
+		{[]string{"properties", "--list", "--temperature", "3", "--pressure", "1 bar"}, exitWrong, "--list tells all fluids and takes no --pressure, --temperature"},
+		{[]string{"duty", "water", "--flow", "3 kg/s", "--from", "20 °C", "--to", "30 °C", "--barometer", "banana"}, exitWrong, `--barometer "banana"`},
+		{[]string{"duty", "water", "--flow", "3 kg/s", "--meter-at", "outlet", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "--meter-at outlet is about a volume flow"},
+		{[]string{"duty", "N2", "--flow", "3 Nm3/h", "--meter-at", "outlet", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "--flow 3 Nm3/h is a normal or standard volume flow"},
 		{[]string{"properties", "water", "--temperature", "20,5 °C"}, exitWrong, "a comma parts temperatures, and the decimal separator is a point"},
 		{[]string{"properties", "water", "--temp", "20 °C"}, exitWrong, "unknown option --temp; near: --temperature; see heatreeve properties --help"},
 		{[]string{"properties", "water", "--colour", "20 °C"}, exitWrong, "unknown option --colour; known: --barometer, --json"},
@@ -194,5 +201,14 @@ func TestFluidCommandsRefuse(t *testing.T) {
 		if status != tt.status || out != "" || !strings.Contains(errs, tt.want) {
 			t.Errorf("heatreeve %q: status %d, printed %q, said %q; want %d, ...%q...", tt.args, status, out, errs, tt.status, tt.want)
 		}
+	}
+}
+
+// Nothing flows, so the duty is nothing, and not less than nothing; a barometer that no
+// gauge pressure needs does no harm.
+func TestDutyOfNoFlow(t *testing.T) {
+	status, out, errs := invoke("duty", "water", "--flow", "0 kg/s", "--from", "80 °C", "--to", "60 °C", "--barometer", "100 kPa", "--json")
+	if status != exitGood || !strings.Contains(out, `"duty_W": 0,`) {
+		t.Errorf("status %d, %s%s", status, out, errs)
 	}
 }

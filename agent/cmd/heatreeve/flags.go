@@ -8,6 +8,7 @@ import (
 	"strings"
 
 	"heatreeve/agent"
+	"heatreeve/thermo/unit/near"
 )
 
 // defaultListen keeps metrics on the machine unless told otherwise.
@@ -55,16 +56,33 @@ func (c *call) unknownOption(err error) string {
 	}
 	var all []string
 	c.flags.VisitAll(func(f *flag.Flag) { all = append(all, f.Name) })
-	text := fmt.Sprintf("unknown option --%s", strings.TrimPrefix(name, "-"))
+	name = strings.TrimPrefix(name, "-")
+	text := fmt.Sprintf("unknown option --%s", name)
 	if guess := intended(name, all); len(guess) > 0 {
 		return text + "; near: --" + strings.Join(guess, ", --")
 	}
 	return text + "; known: --" + strings.Join(all, ", --")
 }
 
-// intended are the known words of which one is the beginning.
+// intended are the known words of which one is the beginning, or where there is none those
+// a few keystrokes away.
 func intended(word string, known []string) []string {
-	return slices.DeleteFunc(slices.Clone(known), func(k string) bool { return word == "" || !strings.HasPrefix(k, word) })
+	begun := slices.DeleteFunc(slices.Clone(known), func(k string) bool { return word == "" || !strings.HasPrefix(k, word) })
+	if len(begun) > 0 {
+		return begun
+	}
+	return near.Names(word, known)
+}
+
+// given are the options on the command line, but for those named.
+func (c *call) given(but ...string) []string {
+	var all []string
+	c.flags.Visit(func(f *flag.Flag) {
+		if !slices.Contains(but, f.Name) {
+			all = append(all, "--"+f.Name)
+		}
+	})
+	return all
 }
 
 // expect holds the operands to their number.

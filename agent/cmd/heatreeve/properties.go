@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"strings"
 	"text/tabwriter"
 
 	"heatreeve/thermo"
@@ -22,6 +23,9 @@ func runProperties(_ context.Context, c *call) error {
 	if *list {
 		if err := c.expect(0, ""); err != nil {
 			return err
+		}
+		if others := c.given("list", "json"); len(others) > 0 {
+			return wrongf("heatreeve properties: --list tells all fluids and takes no %s; usage: %s", strings.Join(others, ", "), c.usage())
 		}
 		return tellFluids(c.stdout, *asJSON)
 	}
@@ -122,6 +126,9 @@ func tellPoint(w io.Writer, f thermo.Fluid, s point) error {
 	return err
 }
 
+// deepVacuum in Pa is where a lowest pressure is of no use to a plant, and left out.
+const deepVacuum = 100
+
 // spanOf says where the phase ends at the pressure p, and where the formulation does.
 func spanOf(f thermo.Fluid, p float64) string {
 	b := f.Bounds()
@@ -135,7 +142,11 @@ func spanOf(f thermo.Fluid, p float64) string {
 	case !math.IsInf(hi, 1):
 		say += fmt.Sprintf(" below %s °C at this pressure", celsius(hi))
 	}
-	return fmt.Sprintf("%s; figures from %s °C to %s °C and up to %s kPa.", say, celsius(b.MinT), celsius(b.MaxT), figures(b.MaxP/1e3, 6))
+	low := "up"
+	if b.MinP > deepVacuum {
+		low = figures(b.MinP/1e3, 6)
+	}
+	return fmt.Sprintf("%s; figures from %s °C to %s °C and %s to %s kPa.", say, celsius(b.MinT), celsius(b.MaxT), low, figures(b.MaxP/1e3, 6))
 }
 
 func tellPoints(w io.Writer, f thermo.Fluid, points []point) error {

@@ -117,3 +117,18 @@ func TestFiguresAreAsSureAsTheyLook(t *testing.T) {
 		t.Errorf("shown as %+v, want %+v", got, want)
 	}
 }
+
+// The head tells the model that was chosen, and the range where a pressure ends it.
+func TestPropertiesTellWhatTheyAreOf(t *testing.T) {
+	for _, tt := range []struct{ fluid, want string }{
+		{"{gas: {N2: 79 %, O2: 21 %}, model: ideal}", "gas: {N2: 79 %, O2: 21 %}, model: ideal, gas, at 20 °C"},
+		{"{gas: {N2: 79 %, O2: 21 %}}", "gas: {N2: 79 %, O2: 21 %}, gas, at 20 °C"},
+		{"moist air 8 g/kg", "figures from -50 °C to 200 °C and 20 to 300 kPa."},
+		{"nitrogen", "°C and up to "},
+	} {
+		status, out, errs := invoke("properties", tt.fluid, "--temperature", "20 °C")
+		if out = strings.Join(strings.Fields(out), " "); status != exitGood || !strings.Contains(out, tt.want) {
+			t.Errorf("%s: status %d, %s%s; want ...%s...", tt.fluid, status, out, errs, tt.want)
+		}
+	}
+}

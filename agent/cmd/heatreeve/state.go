@@ -72,19 +72,16 @@ func (c *call) absolute(name, text string, barometer *string) (float64, error) {
 	if err != nil {
 		return 0, err
 	}
+	air, err := c.air(*barometer)
+	switch {
+	case err != nil:
+		return 0, err
+	case q.Unit.Gauge && air == 0:
+		return 0, wrongf("heatreeve %s: --%s %v is a gauge pressure; write --barometer as well, the air pressure at the place such as 101.3 kPa", c.name, name, q)
+	}
 	p := q.SI()
 	if q.Unit.Gauge {
-		if *barometer == "" {
-			return 0, wrongf("heatreeve %s: --%s %v is a gauge pressure; write --barometer as well, the air pressure at the place such as 101.3 kPa", c.name, name, q)
-		}
-		air, err := c.quantity("barometer", *barometer, unit.Pressure)
-		switch {
-		case err != nil:
-			return 0, err
-		case air.Unit.Gauge || air.SI() < 50e3 || air.SI() > 110e3:
-			return 0, wrongf("heatreeve %s: --barometer %v is no pressure of the air; allowed: 50 kPa to 110 kPa absolute", c.name, air)
-		}
-		p += air.SI()
+		p += air
 	}
 	if p <= 0 {
 		return 0, wrongf("heatreeve %s: --%s %v is not above vacuum", c.name, name, q)
@@ -92,10 +89,25 @@ func (c *call) absolute(name, text string, barometer *string) (float64, error) {
 	return p, nil
 }
 
+// air reads the barometer in Pa; without one it is 0.
+func (c *call) air(text string) (float64, error) {
+	if text == "" {
+		return 0, nil
+	}
+	q, err := c.quantity("barometer", text, unit.Pressure)
+	if err == nil && (q.Unit.Gauge || q.SI() < 50e3 || q.SI() > 110e3) {
+		err = wrongf("heatreeve %s: --barometer %v is no pressure of the air; allowed: 50 kPa to 110 kPa absolute", c.name, q)
+	}
+	return q.SI(), err
+}
+
 // temperatures reads a list in K.
 func (c *call) temperatures(text string) ([]float64, error) {
 	var all []float64
 	for part := range strings.SplitSeq(text, ",") {
+		if strings.TrimSpace(part) == "" && strings.TrimSpace(text) != "" {
+			return nil, wrongf("heatreeve %s: --temperature %q has a comma without a temperature on either side; write 20°C,40°C", c.name, text)
+		}
 		q, err := c.quantity("temperature", strings.TrimSpace(part), unit.Temperature)
 		switch {
 		case err != nil && strings.Contains(text, ","):
