@@ -77,60 +77,45 @@ func (r example) heat(t *testing.T, f thermo.Fluid, mass float64) float64 {
 	return q
 }
 
+// masses are the units of amounts by mass, in kg or kg/s.
+var masses = map[string]float64{
+	"kg/s": 1, "kg": 1, "kg/min": 1. / 60, "kg/h": 1. / 3600, "t/h": 1 / 3.6,
+	"standard air cfm": 0.075 * 0.45359237 / 60, // 0.075 lb/ft³ by convention
+}
+
+// volumes are those of amounts by volume at the meter, in m³ or m³/s.
+var volumes = map[string]float64{
+	"m3": 1, "m3/s": 1, "m3/h": 1. / 3600, "m3/min": 1. / 60, "L/s": 1e-3, "L/min": 1 / 6e4, "L/h": 1 / 3.6e6, "hL/h": 1 / 3.6e4,
+	"gpm": 231 * 0.0254 * 0.0254 * 0.0254 / 60, // a gallon is 231 in³
+}
+
+// gases are those of amounts of an ideal gas, in mol or mol/s.
+var gases = map[string]float64{
+	"mol": 1, "Nm3/h": molar(273.15) / 3600, "Sm3/h": molar(288.15) / 3600, "scfm60": math.Pow(0.3048, 3) / 60 * molar((60+459.67)/1.8),
+}
+
+// molar is how much an ideal gas has at T in K and 1 atm, in mol/m³.
+func molar(T float64) float64 { return 101325 / (thermo.R * T) }
+
 // mass in kg, or flow in kg/s, of the amount as the example states it.
 func (r example) mass(t *testing.T, f thermo.Fluid) float64 {
 	t.Helper()
-	const normal, standard, fahrenheit60 = 273.15, 288.15, (60 + 459.67) / 1.8
-	density := func() float64 {
-		T := r.Number("T_in_K")
-		if r.Text("meter") == "outlet" {
-			T = r.Number("T_out_K")
-		}
-		return r.at(t, f, T).Density
+	n, unit := r.Number("flow"), r.Text("flow_unit")
+	if k, ok := masses[unit]; ok {
+		return n * k
 	}
-	ideal := func(T float64) float64 { return 101325 / (thermo.R * T) * f.MolarMass() } // kg/m³
-	n := r.Number("flow")
-	switch unit := r.Text("flow_unit"); unit {
-	case "kg/s", "kg":
-		return n
-	case "kg/min":
-		return n / 60
-	case "t/h":
-		return n / 3.6
-	case "mol":
-		return n * f.MolarMass()
-	case "m3":
-		return n * density()
-	case "m3/h":
-		return n / 3600 * density()
-	case "m3/s":
-		return n * density()
-	case "L/s":
-		return n / 1e3 * density()
-	case "L/min":
-		return n / 6e4 * density()
-	case "L/h":
-		return n / 3.6e6 * density()
-	case "hL/h":
-		return n / 3.6e4 * density()
-	case "kg/h":
-		return n / 3600
-	case "m3/min":
-		return n / 60 * density()
-	case "gpm":
-		return n * 231 * math.Pow(0.0254, 3) / 60 * density() // a gallon is 231 in³
-	case "Nm3/h":
-		return n / 3600 * ideal(normal)
-	case "Sm3/h":
-		return n / 3600 * ideal(standard)
-	case "scfm60":
-		return n * math.Pow(0.3048, 3) / 60 * ideal(fahrenheit60)
-	case "standard air cfm":
-		return n * 0.075 * 0.45359237 / 60 // 0.075 lb/ft³ by convention
-	default:
+	if k, ok := gases[unit]; ok {
+		return n * k * f.MolarMass()
+	}
+	k, ok := volumes[unit]
+	if !ok {
 		t.Fatalf("unit %q is unknown", unit)
-		return 0
 	}
+	T := r.Number("T_in_K")
+	if r.Text("meter") == "outlet" {
+		T = r.Number("T_out_K")
+	}
+	return n * k * r.at(t, f, T).Density
 }
 
 func (r example) at(t *testing.T, f thermo.Fluid, T float64) thermo.Properties {

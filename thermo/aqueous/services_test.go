@@ -28,19 +28,15 @@ for s in json.load(sys.stdin):
 print(json.dumps(out))
 `
 
-// Ammonia against IAPWS G4-01, of python3-iapws, at random liquid states of 0.3 MPa
-// and a row of strong and cold ones.
-//
-// To 55 °C below zero the difference stays within twice the stated uncertainty.
-// Colder states are printed only. There cp by G4-01 falls as low as 2.0 kJ/(kg K)
-// (30 % at 189 K), though water and liquid ammonia by themselves both have 4.2 or
-// more (from memory); the polynomials keep to 4.2 and above, as Melinder's tables do at -10 °C,
-// and are believed.
-func TestAmmoniaAgainstIAPWS(t *testing.T) {
-	type state struct {
-		T float64 `json:"T"`
-		X float64 `json:"x"`
-	}
+// state of ammonia in water as the script reads it.
+type state struct {
+	T float64 `json:"T"` // K
+	X float64 `json:"x"` // kg/kg
+}
+
+// ammoniaStates are random ones, the worst, and two that are very cold.
+func ammoniaStates(t *testing.T) []state {
+	t.Helper()
 	random := rand.New(rand.NewPCG(13, 4))
 	var states []state
 	for len(states) < 120 {
@@ -55,7 +51,19 @@ func TestAmmoniaAgainstIAPWS(t *testing.T) {
 			}
 		}
 	}
-	states = append(states, state{200, 0.3}, state{189.2, 0.3})
+	return append(states, state{200, 0.3}, state{189.2, 0.3})
+}
+
+// Ammonia against IAPWS G4-01, of python3-iapws, at random liquid states of 0.3 MPa
+// and a row of strong and cold ones.
+//
+// To 55 °C below zero the difference stays within twice the stated uncertainty.
+// Colder states are printed only. There cp by G4-01 falls as low as 2.0 kJ/(kg K)
+// (30 % at 189 K), though water and liquid ammonia by themselves both have 4.2 or
+// more (from memory); the polynomials keep to 4.2 and above, as Melinder's tables do at -10 °C,
+// and are believed.
+func TestAmmoniaAgainstIAPWS(t *testing.T) {
+	states := ammoniaStates(t)
 	want := fluidtest.Python[struct{ Rho, Cp float64 }](t, "python3-iapws", ammoniaScript, states)
 	var worst, cold struct{ cp, density float64 }
 	compared := 0

@@ -55,50 +55,55 @@ type tally int
 func (*tally) Helper()                 {}
 func (n *tally) Errorf(string, ...any) { *n++ }
 
+// escaped is where the fault of allocating leaves what it made.
+var escaped []byte
+
+// faults of a fluid, each with the check that has to catch it.
+var faults = []struct {
+	fault, check string
+	wrong        func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error)
+}{
+	{"NaN", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = math.NaN() })},
+	{"density of zero", "state", edit(func(T float64, s *thermo.Properties) { s.Density = 0 })},
+	{"cv above cp", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = 4001 })},
+	{"u off by 1 J/kg", "state", edit(func(T float64, s *thermo.Properties) { s.InternalEnergy++ })},
+	{"cp off by 5e-6", "state", edit(func(T float64, s *thermo.Properties) { s.Cp *= 1 + 5e-6 })},
+	{"falling enthalpy", "rising", edit(func(T float64, s *thermo.Properties) { s.Enthalpy *= -1 })},
+	{"no bounds", "box", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		return sound{}.right(320, 1e5)
+	}},
+	{"clamped to the phase", "phase", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		return sound{}.right(min(max(T, 280), 360), p)
+	}},
+	{"another type of error", "phase", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		if err != nil {
+			err = errors.New("out of range")
+		}
+		return s, err
+	}},
+	{"the wrong name", "box", editError(func(e *thermo.RangeError) { e.Fluid = "oil" })},
+	{"the wrong bound", "box", editError(func(e *thermo.RangeError) { e.Bound += 0.1 })},
+	{"the wrong side", "box", editError(func(e *thermo.RangeError) { e.Below = !e.Below })},
+	{"no reason", "box", editError(func(e *thermo.RangeError) { e.Why = "" })},
+	{"NaN let through", "nonsense", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		if math.IsNaN(T) {
+			return s, nil
+		}
+		return s, err
+	}},
+	{"figures beside an error", "nonsense", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		s.Cp = 1
+		return s, err
+	}},
+	{"an allocation", "allocations", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		escaped = fmt.Appendf(nil, "%g", T)
+		return s, err
+	}},
+}
+
 // Every check must be able to fail: each fault is caught by the check named.
 func TestFaultsAreCaught(t *testing.T) {
-	var escape []byte
-	for _, tt := range []struct {
-		fault, check string
-		wrong        func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error)
-	}{
-		{"NaN", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = math.NaN() })},
-		{"density of zero", "state", edit(func(T float64, s *thermo.Properties) { s.Density = 0 })},
-		{"cv above cp", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = 4001 })},
-		{"u off by 1 J/kg", "state", edit(func(T float64, s *thermo.Properties) { s.InternalEnergy++ })},
-		{"cp off by 5e-6", "state", edit(func(T float64, s *thermo.Properties) { s.Cp *= 1 + 5e-6 })},
-		{"falling enthalpy", "rising", edit(func(T float64, s *thermo.Properties) { s.Enthalpy *= -1 })},
-		{"no bounds", "box", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			return sound{}.right(320, 1e5)
-		}},
-		{"clamped to the phase", "phase", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			return sound{}.right(min(max(T, 280), 360), p)
-		}},
-		{"another type of error", "phase", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			if err != nil {
-				err = errors.New("out of range")
-			}
-			return s, err
-		}},
-		{"the wrong name", "box", editError(func(e *thermo.RangeError) { e.Fluid = "oil" })},
-		{"the wrong bound", "box", editError(func(e *thermo.RangeError) { e.Bound += 0.1 })},
-		{"the wrong side", "box", editError(func(e *thermo.RangeError) { e.Below = !e.Below })},
-		{"no reason", "box", editError(func(e *thermo.RangeError) { e.Why = "" })},
-		{"NaN let through", "nonsense", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			if math.IsNaN(T) {
-				return s, nil
-			}
-			return s, err
-		}},
-		{"figures beside an error", "nonsense", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			s.Cp = 1
-			return s, err
-		}},
-		{"an allocation", "allocations", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
-			escape = fmt.Appendf(nil, "%g", T)
-			return s, err
-		}},
-	} {
+	for _, tt := range faults {
 		f := sound{tt.wrong}
 		var n tally
 		for _, c := range checks {
@@ -110,7 +115,7 @@ func TestFaultsAreCaught(t *testing.T) {
 			t.Errorf("%s: %q did not notice", tt.fault, tt.check)
 		}
 	}
-	if len(escape) == 0 {
+	if len(escaped) == 0 {
 		t.Error("the fault of allocating was not reached")
 	}
 }

@@ -12,7 +12,7 @@ import (
 // printed is a figure of a table together with half of its last digit.
 type printed struct{ value, half float64 }
 
-// sixDigits is v as %g prints it, without the zeros at the end.
+// sixDigits is v printed to six significant digits, of which %g drops the zeros at the end.
 func sixDigits(v float64) printed {
 	return printed{v, 0.5 * math.Pow(10, math.Floor(math.Log10(math.Abs(v)))-5)}
 }
