@@ -159,9 +159,44 @@ func TestWrongFiles(t *testing.T) {
 			t.Errorf("%s: the reader answers %v", path, err)
 		}
 	}
-	for _, name := range []string{"broker", "credentials", "fluids", "list", "tags"} {
+	for _, name := range []string{"basis", "broker", "credentials", "fluids", "list", "tags"} {
 		if !slices.Contains(refused, name) {
 			t.Errorf("the schema takes %s.yaml", name)
+		}
+	}
+}
+
+// What a share is counted by and what a molar mass is for the schema knows as the reader
+// does.
+func TestSchemaKnowsTheBasis(t *testing.T) {
+	const gas = "{table: {source: a sheet, phase: gas, pressure: 1 bar, molar_mass: 27 g/mol, points: [[0 °C, 1 kJ/(kg K), 1.2 kg/m3], [90 °C, 1 kJ/(kg K), 0.9 kg/m3]]}}"
+	for _, tt := range []struct {
+		fluid string
+		good  bool
+	}{
+		{"{gas: {CO2: 500 g/kg, N2: 500 g/kg}}", false},
+		{"{gas: {CO2: 500 g/kg, N2: 500 g/kg}, by: mole}", false},
+		{"{gas: {CO2: 500 g/kg, N2: 500 g/kg}, by: mass}", true},
+		{"{gas: {CO2: 50 %, N2: 50 per cent}}", true},
+		{"{gas: {CO2: 500 ‰, N2: 500000 ppm}, by: volume}", true},
+		{"{ethanol: 250 g/kg, by: volume}", false},
+		{"{ethanol: 25 %, by: volume, uncertainty: 5 g/kg}", false},
+		{"{ethanol: 25 %, by: volume, uncertainty: 5 ‰}", true},
+		{"{ethanol: 250 g/kg, by: mass}", true},
+		{"{ethanol: 250 g/kg}", true},
+		{"{flue gas: {fuel: {CH4: 100 %}, oxygen: 30 g/kg}}", false},
+		{"{flue gas: {fuel: {CH4: 1 kg/kg}, oxygen: 3 %}}", false},
+		{"{flue gas: {elements: {C: 860 g/kg, H: 140 g/kg}, oxygen: 3 %}}", true},
+		{gas, true},
+		{strings.Replace(gas, "phase: gas, pressure: 1 bar", "phase: solid", 1), false},
+	} {
+		text := examples(t)["brackwater-creamery.yaml"]
+		at := bytes.Index(text, []byte("\nfluids:\n")) + len("\nfluids:\n")
+		text = slices.Concat(text[:at], []byte("  another: "+tt.fluid+"\n"), text[at:])
+		refusal := validate(t, text)
+		_, err := site.Parse("plant.yaml", text)
+		if (refusal == nil) != tt.good || (err == nil) != tt.good {
+			t.Errorf("%s: the schema says %v, the reader %v; good: %v", tt.fluid, refusal, err, tt.good)
 		}
 	}
 }
