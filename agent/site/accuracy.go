@@ -11,6 +11,9 @@ import (
 
 const accuracyForms = "allowed: IEC 60751 A (AA, B, C), 0.5 % of reading, 0.25 % of 16 bar (the span), ± 0.3 K, or several joined by +"
 
+// wholes are words for the span of an instrument.
+var wholes = []string{"span", "full scale", "fs", "f.s.", "range"}
+
 // resistance are the tolerance classes of platinum thermometers:
 // a + b·|t| with t in °C, IEC 60751:2008, table 3.
 var resistance = map[string]Accuracy{
@@ -67,6 +70,8 @@ func accuracyPart(s string, u unit.Unit, zero float64) (Accuracy, error) {
 	case strings.TrimSpace(of) == "reading" || strings.TrimSpace(of) == "rate":
 		q, err := fraction(share)
 		return Accuracy{Rel: q, Zero: zero}, err
+	case slices.Contains(wholes, strings.ToLower(strings.TrimSpace(of))):
+		return Accuracy{}, fmt.Errorf("%q does not say how much that is; write the span itself, such as 0.25 %% of 16 bar", clip(s))
 	}
 	part, err := fraction(share)
 	if err != nil {
@@ -104,10 +109,10 @@ func distance(s string, u unit.Unit) (float64, error) {
 		return x, err
 	}
 	q, err := unit.ParseAs(s, unit.Ratio)
-	switch share := slices.Contains(percent, q.Unit.Symbol); {
-	case err != nil || share == slices.Contains(percent, u.Symbol):
+	switch {
+	case err != nil || sameBasis(q.Unit, u):
 		return x, err
-	case share:
+	case slices.Contains(percent, q.Unit.Symbol):
 		return 0, fmt.Errorf("%v of what? the tag is in %v; want the error in %v, or the whole: %v of reading, or of the span such as %v of 20 g/kg", q, u, u, q, q)
 	}
 	return 0, fmt.Errorf("%v is by mass, and the tag is in %v; want the error in %v", q, u, u)

@@ -73,7 +73,7 @@ func (m measure) limits(p float64) (lo, hi float64, span string) {
 // check holds a constant to the limits.
 func (m measure) check(v value, q unit.Quantity, p float64) bool {
 	lo, hi, span := m.limits(p)
-	if si := q.SI(); si < lo || si > hi {
+	if x := unit.Decimal(q.SI()); x < lo || x > hi {
 		v.fault("%v is out of range of moist air; allowed: %s", q, span)
 		return false
 	}

@@ -31,15 +31,22 @@ func (v value) within(lo, hi float64, span string, d unit.Dimension) (float64, b
 	if !ok {
 		return 0, false
 	}
-	if si := q.SI(); si < lo || si > hi {
+	x := unit.Decimal(q.SI())
+	if x < lo || x > hi {
 		v.fault("%v is out of range; allowed: %s", q, span)
 		return 0, false
 	}
-	return unit.Decimal(q.SI()), true
+	return x, true
 }
 
 // percent are the units of a part of a whole that may be of its volume; g/kg is of its mass.
 var percent = []string{"%", "‰", "ppm"}
+
+// sameBasis tells whether both units of a ratio are in percent or the like, or both by mass;
+// of what 2 % is of a tag in g/kg, nobody can tell. Other units are of one basis.
+func sameBasis(a, b unit.Unit) bool {
+	return a.Dimension != unit.Ratio || slices.Contains(percent, a.Symbol) == slices.Contains(percent, b.Symbol)
+}
 
 // part is within for a part of a whole that is not of its mass; advice tells what else may
 // be done about one that is.

@@ -176,7 +176,7 @@ func topic(v value) string {
 var kelvin = unit.Unit{Symbol: "K", Dimension: unit.Temperature, Factor: 1}
 
 // span reads a list of two quantities, low and high, in the dimension of u. A
-// pressure is gauge where u is, or 0 bar might mean either.
+// pressure is gauge where u is, or 0 bar might mean either, and a ratio by mass where u is.
 func (r *reader) span(v value, u unit.Unit) (lo, hi float64, ok bool) {
 	vs := v.items()
 	if len(vs) != 2 {
@@ -188,11 +188,14 @@ func (r *reader) span(v value, u unit.Unit) (lo, hi float64, ok bool) {
 	var ends [2]float64
 	for i, end := range vs {
 		q, ok := end.quantity(u.Dimension)
-		if ok && q.Unit.Gauge != u.Gauge {
+		switch {
+		case !ok:
+			return 0, 0, false
+		case q.Unit.Gauge != u.Gauge:
 			end.fault("%v and the tag's unit %v are not both gauge or both absolute", q, u)
-			ok = false
-		}
-		if !ok {
+			return 0, 0, false
+		case !sameBasis(q.Unit, u):
+			end.fault("%v and the tag's unit %v are not of the same; want %v", q, u, u)
 			return 0, 0, false
 		}
 		ends[i] = r.absolute(q)
