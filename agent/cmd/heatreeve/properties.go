@@ -114,7 +114,7 @@ const twice = "± is twice the standard uncertainty. Enthalpy and internal energ
 
 func tellPoint(w io.Writer, f thermo.Fluid, s point) error {
 	v := s.shown()
-	fmt.Fprintf(w, "%s, %s, at %s °C and %s kPa absolute\n\n", s.Fluid, s.Phase, v.t, figures(s.Pressure/1e3, 6))
+	fmt.Fprintf(w, "%s\n\n", wrapped(fmt.Sprintf("%s, %s, at %s °C and %s kPa absolute", s.Fluid, s.Phase, v.t, figures(s.Pressure/1e3, 6)), ""))
 	t := newColumns(0)
 	t.line("  enthalpy", "h", v.h+" kJ/kg")
 	t.line("  internal energy", "u", v.u+" kJ/kg")
@@ -150,7 +150,7 @@ func spanOf(f thermo.Fluid, p float64) string {
 }
 
 func tellPoints(w io.Writer, f thermo.Fluid, points []point) error {
-	fmt.Fprintf(w, "%s, %s, at %s kPa absolute\n\n", f.Name(), f.Phase(), figures(points[0].Pressure/1e3, 6))
+	fmt.Fprintf(w, "%s\n\n", wrapped(fmt.Sprintf("%s, %s, at %s kPa absolute", f.Name(), f.Phase(), figures(points[0].Pressure/1e3, 6)), ""))
 	t := newColumns(tabwriter.AlignRight)
 	t.line("°C", "h", "u", "cp ±", "", "cv", "ρ ±", "")
 	t.line("", "kJ/kg", "kJ/kg", "kJ/(kg K)", "", "kJ/(kg K)", "kg/m3", "")

@@ -35,6 +35,8 @@ func TestOutputFitsATerminal(t *testing.T) {
 		{"properties", "CO2", "--temperature", "20 °C", "--pressure", "30 bar"},
 		{"properties", "water", "--temperature", "300 °C", "--pressure", "200 bar"},
 		{"duty", "water", "--flow", "13.5 m3/h", "--from", "130 °C", "--to", "90 °C", "--pressure", "7 bar"},
+		{"properties", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}, model: ideal}", "--temperature", "132.5 °C"},
+		{"properties", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}, model: ideal}", "--temperature", "132.5 °C,180 °C"},
 		{"duty", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}}", "--flow", "12 000 Nm3/h", "--from", "241.5 °C", "--to", "132.5 °C"},
 	} {
 		_, out, errs := invoke(args...)
