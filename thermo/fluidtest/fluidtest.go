@@ -13,13 +13,15 @@ import (
 // Run checks that f keeps the contract of [thermo.Fluid] over the whole of its
 // range, at states spread over pressures and temperatures:
 //
-//   - every figure is finite, density is above zero, cp ≥ cv > 0;
+//   - every figure is finite, density is above zero, cp > cv > 0, and cp = cv where the
+//     [thermo.PressureLaw] is that of an incompressible fluid;
 //   - h = u + p/ρ, and ∂h/∂T at constant pressure is cp (central difference);
 //   - h rises with T;
 //   - ∂h/∂p at constant temperature is v − T ∂v/∂T, or what its [thermo.PressureLaw] makes
 //     of it;
 //   - just beyond each bound of the box, and just outside of the phase, the
-//     error is a *[thermo.RangeError] that names the fluid and the bound;
+//     error is a *[thermo.RangeError] that names the fluid and the very bound: of the box, or
+//     the end of Span, or the pressure at which the phase ends at that temperature;
 //   - NaN, infinite and negative input is refused;
 //   - an evaluation does not allocate;
 //   - the uncertainties are fractions below 1 at every state;

@@ -9,7 +9,7 @@ import (
 	"heatreeve/thermo"
 )
 
-// sound is a made-up liquid with cp = 4000 J/(kg K), 1000 kg/m³, that freezes at
+// sound is a made-up liquid with cp = 4000 J/(kg K), cv a little less, 1000 kg/m³, that freezes at
 // 280 K and boils at 360 K; wrong, when set, spoils what it returns.
 type sound struct {
 	wrong func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error)
@@ -44,7 +44,7 @@ func (f sound) right(T, p float64) (thermo.Properties, error) {
 		return thermo.Properties{}, &thermo.RangeError{Fluid: "sound", Quantity: "temperature", Value: T, Bound: 360, Why: "boiling point"}
 	}
 	h := 4000*(T-300) + p/1000
-	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/1000, Cp: 4000, Cv: 4000, Density: 1000}, nil
+	return thermo.Properties{Enthalpy: h, InternalEnergy: h - p/1000, Cp: 4000, Cv: 3990, Density: 1000}, nil
 }
 
 func TestSoundFluidPasses(t *testing.T) { Run(t, sound{}) }
@@ -66,6 +66,7 @@ var faults = []struct {
 	{"NaN", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = math.NaN() })},
 	{"density of zero", "state", edit(func(T float64, s *thermo.Properties) { s.Density = 0 })},
 	{"cv above cp", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = 4001 })},
+	{"cv as cp", "state", edit(func(T float64, s *thermo.Properties) { s.Cv = s.Cp })},
 	{"u off by 1 J/kg", "state", edit(func(T float64, s *thermo.Properties) { s.InternalEnergy++ })},
 	{"cp off by 5e-6", "state", edit(func(T float64, s *thermo.Properties) { s.Cp *= 1 + 5e-6 })},
 	{"falling enthalpy", "rising", edit(func(T float64, s *thermo.Properties) { s.Enthalpy *= -1 })},
@@ -80,6 +81,12 @@ var faults = []struct {
 			err = errors.New("out of range")
 		}
 		return s, err
+	}},
+	{"an end that is off by a millikelvin", "phase", editError(func(e *thermo.RangeError) { e.Bound -= 1e-3 * side(e) })},
+	{"an end that is the very state", "phase", editError(func(e *thermo.RangeError) { e.Bound = e.Value })},
+	{"the end on the wrong side", "phase", editError(func(e *thermo.RangeError) { e.Below, e.Bound = !e.Below, e.Value })},
+	{"an end in pressure that has nothing to do with it", "phase", func(T, p float64, s thermo.Properties, err error) (thermo.Properties, error) {
+		return s, inPressure(err, p, p*(1+1e-8))
 	}},
 	{"the wrong name", "box", editError(func(e *thermo.RangeError) { e.Fluid = "oil" })},
 	{"the wrong bound", "box", editError(func(e *thermo.RangeError) { e.Bound += 0.1 })},
@@ -156,6 +163,67 @@ func TestFaultsOfOtherMethodsAreCaught(t *testing.T) {
 		if n == 0 {
 			t.Errorf("%+v passed", tt.f)
 		}
+	}
+}
+
+// side is +1 of an upper and -1 of a lower bound.
+func side(e *thermo.RangeError) float64 {
+	if e.Below {
+		return -1
+	}
+	return 1
+}
+
+// inPressure puts the error of a state at p so that it names a bound of pressure.
+func inPressure(err error, p, bound float64) error {
+	if e := new(thermo.RangeError); errors.As(err, &e) {
+		return &thermo.RangeError{Fluid: e.Fluid, Quantity: "pressure", Value: p, Bound: bound, Below: true, Why: e.Why}
+	}
+	return err
+}
+
+// boils is sound but for its boiling point, 360 K at 100 kPa and rising by a tenth of the
+// logarithm of the pressure; it names the pressure it needs, off by a fraction.
+type boils struct {
+	sound
+	off float64
+}
+
+func (boils) Span(p float64) (lo, hi float64) { return 280, 360 * math.Pow(p/1e5, 0.1) }
+
+func (f boils) At(T, p float64) (thermo.Properties, error) {
+	s, err := f.right(min(T, 360), p)
+	if _, hi := f.Span(p); err == nil && T > hi {
+		boiling := &thermo.RangeError{Fluid: "sound", Why: "boiling point"}
+		return thermo.Properties{}, inPressure(boiling, p, 1e5*math.Pow(T/360, 10)*(1+f.off))
+	}
+	return s, err
+}
+
+func TestPressuresOfBoilingAreCompared(t *testing.T) {
+	for _, tt := range []struct {
+		off   float64
+		fails bool
+	}{{0, false}, {1e-8, true}, {0.03, true}, {-5e-9, true}} {
+		var n tally
+		suite{f: boils{off: tt.off}}.phase(&n)
+		if (n > 0) != tt.fails {
+			t.Errorf("off by %g: %d complaints, want some: %v", tt.off, n, tt.fails)
+		}
+	}
+}
+
+// An incompressible fluid has one heat capacity.
+func TestCapacitiesOfIncompressible(t *testing.T) {
+	stiff := thermo.NewIncompressible(320, 280, 360, oily{}.expanding)
+	f := oily{law: stiff.PressureLaw(), stiff: stiff, spoil: func(p float64, s thermo.Properties) thermo.Properties {
+		s.Cv -= 1
+		return s
+	}}
+	var n tally
+	suite{f: f, states: states(f)}.everyState(&n)
+	if n == 0 {
+		t.Error("cv below cp of an incompressible fluid passed")
 	}
 }
 

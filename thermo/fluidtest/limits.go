@@ -42,18 +42,54 @@ func beneath(p float64) float64 {
 	return p * (1 - hair)
 }
 
-// phase checks the ends of Span that lie within the box.
+// phase checks the ends of Span that lie within the box: the error names the very end, or,
+// where it is put as a pressure, the one at which the phase ends at that temperature.
 func (s suite) phase(t report) {
 	b := s.f.Bounds()
 	for _, p := range pressures(b) {
 		lo, hi := s.f.Span(p)
-		if lo > b.MinT && lo < b.MaxT {
-			s.refusal(t, state{lo * (1 - hair), p})
+		if T := lo * (1 - hair); T >= b.MinT && T < b.MaxT {
+			s.end(t, state{T, p}, true)
 		}
-		if hi > b.MinT && hi < b.MaxT {
-			s.refusal(t, state{hi * (1 + hair), p})
+		if T := hi * (1 + hair); T > b.MinT && T <= b.MaxT {
+			s.end(t, state{T, p}, false)
 		}
 	}
+}
+
+// end checks the error of a state just beyond the lower or the upper end of Span.
+func (s suite) end(t report, st state, lower bool) {
+	e := s.refusal(t, st)
+	if e == nil {
+		return
+	}
+	lo, hi := s.f.Span(st.p)
+	if !(lo < hi) { // beyond both
+		if e.Quantity != "temperature" || !(e.Below && e.Bound == lo || !e.Below && e.Bound == hi) {
+			t.Errorf("%.12g K, %.12g Pa: got %+v; want the temperature of either end, %g K or %g K", st.T, st.p, *e, lo, hi)
+		}
+		return
+	}
+	want := hi
+	if lower {
+		want = lo
+	}
+	if e.Quantity == "temperature" && e.Bound == want && e.Below == lower || s.endsAt(e, st.T) {
+		return
+	}
+	t.Errorf("%.12g K, %.12g Pa: got %+v; want temperature, bound %g, below %v, or the pressure to it", st.T, st.p, *e, want, lower)
+}
+
+// endsAt tells whether an error names the pressure at which the phase ends at T: that is
+// within Span a hair to one side of it and beyond it a hair to the other.
+func (s suite) endsAt(e *thermo.RangeError, T float64) bool {
+	above, below := s.within(T, e.Bound*(1+hair)), s.within(T, e.Bound*(1-hair))
+	return e.Quantity == "pressure" && above == e.Below && below != e.Below
+}
+
+func (s suite) within(T, p float64) bool {
+	lo, hi := s.f.Span(p)
+	return lo <= T && T <= hi
 }
 
 // refusal returns the RangeError for a state that must be refused, after

@@ -11,10 +11,7 @@ import (
 // by central differences in pressure and in temperature, all over the inner states: at the
 // outermost ones a neighbour may lie beyond an end.
 func (s suite) pressure(t report) {
-	var law thermo.PressureLaw
-	if c, ok := s.f.(thermo.Compressed); ok {
-		law = c.PressureLaw()
-	}
+	law := s.law()
 	for _, st := range innerStates(s.f) {
 		got, noise, err1 := s.byPressure(st)
 		want, v, err2 := s.byLaw(law, st)
@@ -29,6 +26,14 @@ func (s suite) pressure(t report) {
 			t.Errorf("%g K, %g Pa: the density of an incompressible fluid changes by %g of it", st.T, st.p, d)
 		}
 	}
+}
+
+// law is that of a plain fluid where it names none.
+func (s suite) law() thermo.PressureLaw {
+	if c, ok := s.f.(thermo.Compressed); ok {
+		return c.PressureLaw()
+	}
+	return thermo.PressureLaw{}
 }
 
 // closeness is what the differences leave open, as a fraction of v.
