@@ -61,7 +61,9 @@ func products() (ws []*word) {
 	}
 	for _, group := range oil.Groups() {
 		for _, name := range oil.GroupAliases(group) {
-			ws = append(ws, ofGroup(group, name, densities[group]))
+			w := ofGroup(group, name, densities[group])
+			w.main = group
+			ws = append(ws, w)
 		}
 	}
 	for _, w := range ws {

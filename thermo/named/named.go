@@ -1,7 +1,7 @@
 // Package named finds a fluid by the name that an engineer writes: "water",
 // "CO2", "propylene glycol 32 %", "seawater 35 g/kg", "diesel 840 kg/m3".
 //
-// Letter case, spaces and hyphens make no difference. A name that wants a strength
+// Letter case, spaces and hyphens make no difference, in the unit of a strength neither. A name that wants a strength
 // has it with its unit, behind or before: "%", "‰" and "g/kg" are by mass, "vol %" is
 // by volume. [List] tells every name with its range and source. The names of the trade
 // for the same fluids ("hot water", "R717", "40 % MEG") are found as well, and those
@@ -68,7 +68,8 @@ func (e *UnknownError) Advice() string {
 	return ""
 }
 
-// Hint is the error without the list of all names.
+// Hint is the error without the list of all names. Where no name is near, it tells those
+// whose spelling is the nearest as no more than that.
 func (e *UnknownError) Hint() string {
 	if advice := e.Advice(); advice != "" {
 		return fmt.Sprintf("fluid %q %s", clip(e.Name), advice)
@@ -76,6 +77,9 @@ func (e *UnknownError) Hint() string {
 	say := fmt.Sprintf("fluid %q is not known", clip(e.Name))
 	if guess := e.Near(); len(guess) > 0 {
 		return say + "; near: " + quoted(guess)
+	}
+	if guess := e.Nearest(); len(guess) > 0 {
+		say += "; nearest by spelling: " + quoted(guess)
 	}
 	return say + "; one of your own is declared by its figures, {table: ...} or {polynomial: ...}"
 }
@@ -103,8 +107,8 @@ func fold(name string) string {
 	}, name)))
 }
 
-// alike maps spellings of two countries to one.
-var alike = strings.NewReplacer("sulph", "sulf", "vapour", "vapor", "ized", "ised")
+// alike maps spellings of two countries to one, and an element's older name to its name.
+var alike = strings.NewReplacer("sulph", "sulf", "vapour", "vapor", "ized", "ised", "natrium", "sodium", "kalium", "potassium")
 
 func quoted(names []string) string {
 	qs := make([]string, len(names))

@@ -65,6 +65,10 @@ func TestLookupIsLenient(t *testing.T) {
 		{"liquid NH3", "liquid ammonia"}, {"Liquid Ammonia", "liquid ammonia"},
 		{"moist air", "moist air"}, {"moist air 8 g/kg", "moist air 8 g/kg"}, {"Moist-Air 0.008 kg/kg", "moist air 8 g/kg"},
 		{"seawater 35 g/kg", "seawater 35 g/kg"}, {"Sea water 3.5 %", "seawater 35 g/kg"}, {"sea-water 35‰", "seawater 35 g/kg"},
+		{"SEAWATER 35 G/KG", "seawater 35 g/kg"}, {"35 G/KG SEAWATER", "seawater 35 g/kg"}, {"MOIST AIR 8 G/KG", "moist air 8 g/kg"}, {"DIESEL 840 KG/M3", "petroleum 840 kg/m³"},
+		{"ETHANOL 40 VOL %", "ethanol 40 vol %"}, {"30 % OF ETHANOL", "ethanol 30 %"}, {"ethanol-20-%", "ethanol 20 %"}, {"20-%-ethanol", "ethanol 20 %"}, {"ethanol_20_%", "ethanol 20 %"}, {"ethanol - 20 %", "ethanol 20 %"},
+		{"propylene-glycol-30-vol-%", "propylene glycol 30 vol %"}, {"seawater-35-g/kg", "seawater 35 g/kg"}, {"diesel-840-kg/m3", "petroleum 840 kg/m³"}, {"CRUDE OIL 31 °api", "crude oil 870.304 kg/m³"},
+		{"natrium chloride 20 %", "sodium chloride 20 %"}, {"Kaliumformate 30 %", "potassium formate 30 %"},
 		{"milk", "whole milk"}, {"Skimmed milk", "skim milk"}, {"copper", "copper"},
 		{"petroleum 870 kg/m3", "petroleum 870 kg/m³"}, {"Fuel Oil 0.9 kg/L", "fuel oil 900 kg/m³"}, {"terphenyl", "modified terphenyl"}, {"Mineral Oil B", "mineral oil B"}, {"steel", "carbon steel"},
 	} {
@@ -131,12 +135,22 @@ func TestTermsOfTheTrade(t *testing.T) {
 		{"propylene glycol 32 % w/v", "mass per volume"}, {"K-formate", `K-formate wants its strength as well: write "K-formate 20 %"`}, {"HFO", "HFO wants its density"},
 		{"water at 80 °C", `"at 80 °C" is no part of a fluid's name: "water" is the fluid`}, {"steam 10 bar", `"10 bar" is no part of a fluid's name`}, {"water/glycol 70/30", `near: "ethylene glycol 20 %"`},
 		{"steel 304", `near: "carbon steel", "stainless steel 304"`}, {"whole milk 3.5", `near: "whole milk"`},
-		{"ethylene glycol 50/50", `"50/50" does not say which part is whose`}, {"demineralized woter", `near: "demineralised water"`},
+		{"ethylene glycol 50/50", `"50/50" does not say which part is whose`}, {"demineralized woter", `near: "water"; known`},
 		{"oil 870 kg/m3", `near: "petroleum 870 kg/m3"`}, {"moist air 50 % RH", "{moist air: {relative humidity: 50 %"}, {"propylene glycol % 32", `near: "propylene glycol 20 %"`},
 	} {
 		f, err := Lookup(tt.name)
 		if err == nil || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("Lookup(%q) = %v, %v; want ...%s...", tt.name, f, err, tt.want)
+		}
+	}
+	for _, tt := range []struct{ name, want string }{
+		{"proplyene glycol 30 %", `is not known; near: "propylene glycol 30 %"; known`}, {"propylen glicol 30 %", `; near: "propylene glycol 30 %"; known`},
+		{"cow milk", `nearest by spelling: "whole milk", "skim milk"; one of your own`}, {"barium chloride 20 %", `nearest by spelling: "calcium chloride 20 %", "sodium chloride 20 %"; one`},
+		{"toluene", `nearest by spelling: "ethylene", "chlorine"; one of`}, {"acetone", `nearest by spelling: "`}, {"foobar", `nearest by spelling: "`}, {"XY", `nearest by spelling: "`},
+		{"???", `"???" is not known; one of your own`}, {"20 %", `"20 %" is not known; one of your own`},
+	} {
+		if _, err := Lookup(tt.name); err == nil || !strings.Contains(err.Error(), tt.want) {
+			t.Errorf("Lookup(%q): %v; want ...%s...", tt.name, err, tt.want)
 		}
 	}
 	for _, short := range []string{"XY", "R1", "QQQ", "Zr"} {
@@ -202,7 +216,7 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"Glycol 30 %", []string{`near: "ethylene glycol 30 %", "propylene glycol 30 %"; known`}},
 		{"fuel oil", []string{`fuel oil wants its density at 15 °C as well: write "fuel oil 900 kg/m3"`}},
 		{"nitrogn", []string{`near: "nitrogen"`}},
-		{"unobtainium", []string{`"unobtainium" is not known; one of your own is declared by its figures, {table: ...} or {polynomial: ...}; known: water`}},
+		{"unobtainium", []string{`"unobtainium" is not known; nearest by spelling: "aluminium", "n-butane"; one of your own is declared by its figures, {table: ...} or {polynomial: ...}; known: water`}},
 		{"propylene glycol", []string{"wants its strength as well", `write "propylene glycol `}},
 		{"moist air 350 g/kg", []string{"humidity ratio 0.35 kg/kg is outside of 0 to 0.25"}},
 		{"ethylene glycol 69 %", []string{"mass fraction 0.69; "}},
@@ -214,7 +228,7 @@ func TestLookupSaysHowToWrite(t *testing.T) {
 		{"water 32 %", []string{"water is of one composition and takes no strength", `found "32 %"`}},
 		{"calcium chloride 20 vol %", []string{"calcium chloride: ", `"20 vol %" is by volume, and it is known by mass only`}},
 		{"moist air 50 %", []string{"want its humidity ratio in g/kg"}},
-		{strings.Repeat("x", 1000), []string{`xxx..." is not known; one`}},
+		{strings.Repeat("x", 1000), []string{`xxx..." is not known; nearest by spelling: `}},
 	} {
 		f, err := Lookup(tt.name)
 		if err == nil {

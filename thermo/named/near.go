@@ -1,19 +1,23 @@
 package named
 
 import (
+	"cmp"
 	"fmt"
 	"regexp"
 	"slices"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 
 	"heatreeve/thermo/unit/near"
 )
 
 // most names are guessed, for a part of a name or a slip of the keys.
 const (
-	most      = 5
-	leastPart = 3 // letters of a name that are worth a guess
-	shortName = 4 // letters of a name of which any two look alike
+	most        = 5
+	mostSpelled = 2
+	leastPart   = 3 // letters of a name that are worth a guess
+	shortName   = 4 // letters of a name of which any two look alike
 )
 
 // Near lists the names that the unknown one may have been meant to be: those that the
@@ -29,12 +33,76 @@ func (e *UnknownError) Near() []string {
 		return all
 	}
 	var all []string
-	for _, key := range guesses(bare(e.Name)) {
+	for _, key := range guesses(bare(e.Name)) { // another name of the same is shown by its own
 		if n := exampleOf(key, tail); !slices.Contains(all, n) {
 			all = append(all, n)
 		}
 	}
 	return all[:min(most, len(all))]
+}
+
+// Nearest lists the names, two at most, that have a word of the unknown one or, where there
+// is none, whose spelling differs in the least part of its letters. They need not have to
+// do with what was meant.
+func (e *UnknownError) Nearest() []string {
+	sought := clip(strengths.ReplaceAllString(e.Name, " "))
+	key := bare(sought)
+	if key == "" {
+		return nil
+	}
+	tail := strings.TrimSpace(strengths.FindString(e.Name))
+	var candidates []candidate
+	for _, w := range words() {
+		if w.dimension != 0 && tail == "" && index().plain[fold(w.name)] != nil {
+			continue // the plain one is told
+		}
+		c := candidate{w.name, 0, apart(key, fold(w.name))}
+		for _, name := range append([]string{w.name}, w.also...) {
+			c.shared = max(c.shared, shared(sought, name))
+		}
+		if c.shared > 0 || c.apart < 1 {
+			candidates = append(candidates, c)
+		}
+	}
+	slices.SortStableFunc(candidates, func(a, b candidate) int {
+		return cmp.Or(cmp.Compare(b.shared, a.shared), cmp.Compare(a.apart, b.apart))
+	})
+	var all []string
+	for _, c := range candidates {
+		if n := exampleOf(fold(c.name), tail); len(all) < mostSpelled && !slices.Contains(all, n) {
+			all = append(all, n)
+		}
+	}
+	return all
+}
+
+// candidate is a name with how many letters of whole words the fluid's names share with the
+// one that is sought, and which part of the letters differs.
+type candidate struct {
+	name   string
+	shared int
+	apart  float64
+}
+
+// shared counts the letters of the words that stand in both names.
+func shared(a, b string) (letters int) {
+	others := strings.FieldsFunc(b, parted)
+	for i := range others {
+		others[i] = fold(others[i])
+	}
+	for _, word := range strings.FieldsFunc(a, parted) {
+		if w := fold(word); len(w) >= leastPart && slices.Contains(others, w) {
+			letters += len(w)
+		}
+	}
+	return letters
+}
+
+func parted(r rune) bool { return !unicode.IsLetter(r) && !unicode.IsDigit(r) }
+
+// apart is the part of the letters in which two folded names differ, 0 to 1.
+func apart(a, b string) float64 {
+	return float64(near.Distance(a, b)) / float64(max(utf8.RuneCountInString(a), utf8.RuneCountInString(b)))
 }
 
 // bare is the folded name without what may be a strength.
@@ -69,6 +137,7 @@ var numbered = regexp.MustCompile(`^(liquid)?r\d`)
 // exampleOf is the name of a key as it may be looked up, with the strength that was
 // written if it goes with it.
 func exampleOf(key, tail string) string {
+	key = index().listed(key)
 	w := index().of(key)
 	if strong, ok := index().strong[key]; ok && tail != "" {
 		w = strong

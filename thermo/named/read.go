@@ -27,11 +27,11 @@ func read(name string) (reading, bool) {
 		return reading{w, ""}, true
 	}
 	for i, r := range name {
-		if !unicode.IsDigit(r) && !isSign(r, name[:i]) {
+		if !unicode.IsDigit(r) && !isSign(r, name[:i], name[i:]) {
 			continue
 		}
 		if w, ok := strong(name[:i]); ok {
-			return reading{w, unwrap(name[i:])}, true
+			return reading{w, unjoin(unwrap(name[i:]))}, true
 		}
 	}
 	return readBehind(name)
@@ -46,7 +46,7 @@ func readBehind(name string) (reading, bool) {
 	for i, r := range name {
 		if unicode.IsLetter(r) {
 			if w, ok := strong(name[i:]); ok {
-				return reading{w, strings.TrimSuffix(strings.TrimSpace(name[:i]), " of")}, true
+				return reading{w, unjoin(of.ReplaceAllString(name[:i], ""))}, true
 			}
 		}
 	}
@@ -118,7 +118,7 @@ var at = regexp.MustCompile(`(?i)^(?:at\s+|@\s*)`)
 
 // refuse says why a fluid of one composition does not go with the quantity beside it.
 func refuse(f thermo.Fluid, tail string) error {
-	if _, err := unit.ParseAs(at.ReplaceAllString(tail, ""), unit.Temperature, unit.Pressure); err == nil {
+	if _, err := unit.ParseFold(at.ReplaceAllString(tail, ""), unit.Temperature, unit.Pressure); err == nil {
 		return fmt.Errorf("%q is no part of a fluid's name: %q is the fluid, and its temperature and pressure are told apart from it", clip(tail), f.Name())
 	}
 	return fmt.Errorf("%s is of one composition and takes no strength, found %q%s", f.Name(), clip(tail), ofAnother(f))
@@ -156,7 +156,21 @@ func unwrap(tail string) string {
 	return tail
 }
 
-// isSign tells a sign from a hyphen that joins two words.
-func isSign(r rune, before string) bool {
-	return strings.ContainsRune("+-−", r) && strings.HasSuffix(before, " ")
+var (
+	of     = regexp.MustCompile(`(?i)\s+of\s*$`)
+	joined = regexp.MustCompile(`^(\s*[+−-]?\d[\d.]*)\s*[\p{Pd}_]\s*([^\d\s])`)
+)
+
+// unjoin takes the hyphens from a strength that join it to its unit and to what follows:
+// "20-%", "20-%-".
+func unjoin(tail string) string {
+	tail = strings.TrimRightFunc(tail, func(r rune) bool { return unicode.IsSpace(r) || unicode.Is(unicode.Pd, r) || r == '_' })
+	return joined.ReplaceAllString(tail, "$1 $2")
+}
+
+// isSign tells the sign of a number, which starts a word, from a hyphen that joins two
+// words and from a dash.
+func isSign(r rune, before, from string) bool {
+	next, _ := utf8.DecodeRuneInString(strings.TrimLeft(from, "+-−"))
+	return strings.ContainsRune("+-−", r) && strings.HasSuffix(before, " ") && !unicode.IsSpace(next)
 }

@@ -44,7 +44,7 @@ func (w *word) withStrength(text string) (thermo.Fluid, error) {
 	case unit.Density:
 		s, err = petroleumStrength(text)
 	default:
-		s.Quantity, err = unit.ParseAs(text, w.dimension)
+		s.Quantity, err = unit.ParseFold(text, w.dimension)
 	}
 	if err != nil {
 		return nil, fmt.Errorf("%s: %w; write %q%s", w.name, err, w.example(), w.hint())
@@ -70,7 +70,7 @@ func (w *word) share(text string) (s strength, err error) {
 	case s.byVolume && !w.volume:
 		return s, fmt.Errorf("%q is by volume, and it is known by mass only", clip(text))
 	}
-	s.Quantity, err = unit.ParseAs(plain, unit.Ratio)
+	s.Quantity, err = unit.ParseFold(plain, unit.Ratio)
 	return s, err
 }
 
@@ -104,7 +104,7 @@ func petroleumStrength(text string) (s strength, err error) {
 		s.Quantity.Value, s.api = x, true
 		return s, nil
 	}
-	s.Quantity, err = unit.ParseAs(text, unit.Density)
+	s.Quantity, err = unit.ParseFold(text, unit.Density)
 	return s, err
 }
 

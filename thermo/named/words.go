@@ -18,13 +18,14 @@ type word struct {
 	gas       bool           // which the name may tell as well
 	solution  bool           // in water, which the name may tell as well
 	aside     bool           // a name of the trade: found, but not in the list
+	main      string         // the name in the list of what this is another name of, or ""
 	make      func(strength) (thermo.Fluid, error)
 }
 
 // called is the word aside, under another name.
 func (w *word) called(name string) *word {
 	other := *w
-	other.name, other.aside = name, true
+	other.name, other.aside, other.main = name, true, w.name
 	return &other
 }
 
@@ -81,6 +82,14 @@ func (l *lexicon) of(key string) *word {
 		return w
 	}
 	return l.strong[key]
+}
+
+// listed is the key of the same fluid in the list.
+func (l *lexicon) listed(key string) string {
+	if w := l.of(key); w.main != "" {
+		return fold(w.main)
+	}
+	return key
 }
 
 var index = sync.OnceValue(func() *lexicon {

@@ -40,6 +40,17 @@ func Parse(s string) (Quantity, error) { return ParseAs(s) }
 // dimension is an error that names the one found, those allowed, and their
 // units. A symbol of two dimensions (K) is taken as the first one allowed.
 func ParseAs(s string, allowed ...Dimension) (Quantity, error) {
+	return parseBy(s, LookupAs, allowed)
+}
+
+// ParseFold is [ParseAs] for a place where letter case tells nothing, such as the name
+// of a fluid: "35 G/KG". A unit that its case tells from another one is still to be
+// written as it is: mW, MW.
+func ParseFold(s string, allowed ...Dimension) (Quantity, error) {
+	return parseBy(s, lookupFold, allowed)
+}
+
+func parseBy(s string, lookup func(string, ...Dimension) (Unit, error), allowed []Dimension) (Quantity, error) {
 	if !utf8.ValidString(s) {
 		return Quantity{}, fmt.Errorf("%q is not valid UTF-8", clip(s))
 	}
@@ -47,7 +58,7 @@ func ParseAs(s string, allowed ...Dimension) (Quantity, error) {
 	if err != nil {
 		return Quantity{}, fmt.Errorf("%q: %w%s", clip(s), err, hint("; allowed here: ", allowed))
 	}
-	u, err := LookupAs(strings.TrimSpace(rest), allowed...)
+	u, err := lookup(strings.TrimSpace(rest), allowed...)
 	if err != nil {
 		return Quantity{}, fmt.Errorf("%q: %w", clip(s), err)
 	}

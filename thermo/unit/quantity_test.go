@@ -56,7 +56,7 @@ func TestParse(t *testing.T) {
 			continue
 		}
 		// 1e-14: a few roundings of a float64 between two ways to multiply.
-		if math.Abs(q.SI()-tt.want) > 1e-14*tt.want || q.Unit.Dimension != tt.d || q.Unit.Gauge != tt.gauge {
+		if !(math.Abs(q.SI()-tt.want) <= 1e-14*tt.want) || q.Unit.Dimension != tt.d || q.Unit.Gauge != tt.gauge {
 			t.Errorf("Parse(%q) = %v %v (gauge %v); want %v %v (gauge %v) by %s",
 				tt.text, q.SI(), q.Unit.Dimension, q.Unit.Gauge, tt.want, tt.d, tt.gauge, tt.source)
 		}
@@ -120,7 +120,7 @@ func TestParseAs(t *testing.T) {
 		t.Errorf("a margin of 5 K is %v, %v; want a difference of 5 K", q, err)
 	}
 	q, err = ParseAs("9 °F", TemperatureDifference)
-	if err != nil || math.Abs(q.SI()-5) > 1e-14 {
+	if err != nil || !(math.Abs(q.SI()-5) <= 1e-14) {
 		t.Errorf("a difference of 9 °F is %v K, %v; want 5", q.SI(), err)
 	}
 	q, err = ParseAs("-3 °C", TemperatureDifference, Temperature)
@@ -247,5 +247,30 @@ func TestDecimal(t *testing.T) {
 	}
 	if got := Decimal(math.NaN()); !math.IsNaN(got) {
 		t.Errorf("no number becomes %v", got)
+	}
+}
+
+// Where case tells nothing a unit is found in any; where it tells two apart, it must be
+// right, and what is ambiguous stays so.
+func TestParseFold(t *testing.T) {
+	for _, tt := range []struct {
+		text    string
+		allowed []Dimension
+		want    string
+	}{
+		{"35 G/KG", []Dimension{Ratio}, "35 g/kg"}, {"840 KG/M³", []Dimension{Density}, "840 kg/m3"}, {"20 PERCENT", []Dimension{Ratio}, "20 %"},
+		{"10 BAR", []Dimension{Pressure}, "10 bar"}, {"3 mbar", []Dimension{Pressure}, "3 mbar"}, {"5 mW", []Dimension{Power}, ""}, {"5 kw", []Dimension{Power}, "5 kW"}, {"5 MW", []Dimension{Power}, "5 MW"},
+		{"5 Mw", []Dimension{Power}, ""}, {"35 G/KG", []Dimension{Density}, ""}, {"35 G/KG", nil, ""}, {"3 TON", []Dimension{Mass}, ""},
+	} {
+		q, err := ParseFold(tt.text, tt.allowed...)
+		if tt.want == "" {
+			if err == nil {
+				t.Errorf("ParseFold(%q, %v) = %v", tt.text, tt.allowed, q)
+			}
+			continue
+		}
+		if err != nil || q.String() != tt.want {
+			t.Errorf("ParseFold(%q, %v) = %v, %v; want %s", tt.text, tt.allowed, q, err, tt.want)
+		}
 	}
 }

@@ -55,7 +55,7 @@ func TestTableHoldsEveryReferenceRow(t *testing.T) {
 		if d == MolarFlow {
 			factor *= 8.314462618 / thermo.R
 		}
-		if u.Dimension.SI() != line[2] || math.Abs(u.Factor/factor-1) > 1e-14 || math.Abs(u.Offset-offset) > 1e-12 {
+		if u.Dimension.SI() != line[2] || !(math.Abs(u.Factor/factor-1) <= 1e-14) || !(math.Abs(u.Offset-offset) <= 1e-12) {
 			t.Errorf("%s: SI = %v·x + %v in %s; want %v·x + %v in %s (%s)",
 				line[1], u.Factor, u.Offset, u.Dimension.SI(), factor, offset, line[2], line[6])
 		}
@@ -90,7 +90,7 @@ func TestPrintedFactors(t *testing.T) {
 		{"hL", 0.1, 1e-15}, {"hL/h", 0.1 / 3600, 1e-15}, // SI Brochure: 1 L = 1e-3 m³
 	} {
 		u, err := Lookup(tt.symbol)
-		if err != nil || math.Abs(u.Factor/tt.want-1) > tt.digits {
+		if err != nil || !(math.Abs(u.Factor/tt.want-1) <= tt.digits) {
 			t.Errorf("%s: factor %v, %v; want %v", tt.symbol, u.Factor, err, tt.want)
 		}
 	}
@@ -134,7 +134,7 @@ func TestNamesAreUnique(t *testing.T) {
 func TestThereAndBack(t *testing.T) {
 	for _, r := range table {
 		for _, x := range []float64{-40, 0, 0.1, 1, 12.5, 640, 1e6} {
-			if got := r.Of(r.SI(x)); math.Abs(got-x) > 1e-12*max(1, math.Abs(x), r.Offset) {
+			if got := r.Of(r.SI(x)); !(math.Abs(got-x) <= 1e-12*max(1, math.Abs(x), r.Offset)) {
 				t.Errorf("%s: %v there and back is %v", r.Symbol, x, got)
 			}
 		}

@@ -10,6 +10,8 @@ package unit
 
 import (
 	"fmt"
+	"slices"
+	"strings"
 	"sync"
 )
 
@@ -64,6 +66,35 @@ func LookupAs(symbol string, allowed ...Dimension) (Unit, error) {
 		}
 	}
 	return Unit{}, fmt.Errorf("%q is a unit of %s; allowed here: %s", symbol, found[0].Dimension, describe(allowed))
+}
+
+// lookupFold is [LookupAs] that takes the letters of a unit in any case, where no other
+// of the allowed units is so spelled. A first m may be milli or mega and stays as it is.
+func lookupFold(symbol string, allowed ...Dimension) (Unit, error) {
+	exact, err := LookupAs(symbol, allowed...)
+	if err == nil {
+		return exact, nil
+	}
+	key := spelling(symbol)
+	found := make(map[Unit]bool)
+	for _, r := range table {
+		for _, name := range r.names() {
+			if s := spelling(name); slices.Contains(allowed, r.Dimension) && strings.EqualFold(s, key) && (s[0] == key[0] || s[0] != 'm' && s[0] != 'M') {
+				found[r.Unit] = true
+			}
+		}
+	}
+	for name := range ambiguous {
+		if strings.EqualFold(name, key) {
+			return Unit{}, err
+		}
+	}
+	if len(found) == 1 {
+		for u := range found {
+			return u, nil
+		}
+	}
+	return Unit{}, err
 }
 
 // Named lists the units of a dimension under their first names, the usual ones
