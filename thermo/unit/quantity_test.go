@@ -260,7 +260,7 @@ func TestParseFold(t *testing.T) {
 	}{
 		{"35 G/KG", []Dimension{Ratio}, "35 g/kg"}, {"840 KG/M³", []Dimension{Density}, "840 kg/m3"}, {"20 PERCENT", []Dimension{Ratio}, "20 %"},
 		{"10 BAR", []Dimension{Pressure}, "10 bar"}, {"3 mbar", []Dimension{Pressure}, "3 mbar"}, {"5 mW", []Dimension{Power}, ""}, {"5 kw", []Dimension{Power}, "5 kW"}, {"5 MW", []Dimension{Power}, "5 MW"},
-		{"5 Mw", []Dimension{Power}, ""}, {"35 G/KG", []Dimension{Density}, ""}, {"35 G/KG", nil, ""}, {"3 TON", []Dimension{Mass}, ""},
+		{"5 Mw", []Dimension{Power}, "5 MW"}, {"35 G/KG", []Dimension{Density}, ""}, {"35 G/KG", nil, ""}, {"3 TON", []Dimension{Mass}, ""},
 	} {
 		q, err := ParseFold(tt.text, tt.allowed...)
 		if tt.want == "" {
