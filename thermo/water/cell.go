@@ -1,5 +1,7 @@
 package water
 
+import "heatreeve/thermo"
+
 // liquidCell holds the factors of a polynomial for h in J/kg and one for density
 // in kg/m³, of degree 3 and 2 in temperature: h1[k] goes with x y^k, where x is in K
 // and y in heights of the cell, both from its middle. The higher the power of x,
@@ -52,10 +54,12 @@ func (c *steamCell) at(x, y float64) (h, cp, density float64) {
 	return h0 + x*mean, mean + (v + x*u), d0 + x*(d1+x*(c.d2[0]+y*c.d2[1]))
 }
 
-// samples are the factors of x^i at each node of pressure.
+// samples are the factors of x^i at each node of pressure, and the states that they
+// are made of.
 type samples struct {
-	h [4][5]float64
-	d [3][5]float64
+	states [5][3]thermo.Balance
+	h      [4][5]float64
+	d      [3][5]float64
 }
 
 func (c *liquidCell) fit(s *samples) {

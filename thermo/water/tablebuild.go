@@ -2,6 +2,7 @@ package water
 
 import (
 	"math"
+	"slices"
 
 	"heatreeve/thermo"
 )
@@ -14,7 +15,9 @@ type builder[C any] struct {
 	limits  func(T1, T2 float64) (lo, hi float64) // Pa, of the region between two temperatures
 	fit     func(*C, *samples)
 	at      func(c *C, x, y float64) (h, cp, density float64)
-	most    int // cells of a table
+
+	worked int             // states so far
+	room   [mostInColumn]C // for the column at work
 }
 
 // clear is the part by which columns keep away from the bounds of a region and of
@@ -22,13 +25,13 @@ type builder[C any] struct {
 const clear = 1e-9
 
 var liquidBuilder = builder[liquidCell]{
-	balance: region1, maxT: region1MaxT, most: 2400,
+	balance: region1, maxT: region1MaxT,
 	limits: func(_, T2 float64) (lo, hi float64) { return saturationPressure(T2), highestP },
 	fit:    (*liquidCell).fit, at: (*liquidCell).at,
 }
 
 var steamBuilder = builder[steamCell]{
-	balance: region2, gas: true, maxT: region2MaxT, most: 2000,
+	balance: region2, gas: true, maxT: region2MaxT,
 	limits: func(T1, _ float64) (lo, hi float64) {
 		switch {
 		case T1 <= region1MaxT:
@@ -47,9 +50,9 @@ func (b *builder[C]) columns(T1, T2, p1, p2 float64) []column[C] {
 	total, n := 0, 1
 	for T := T1; T < T2 && T+1 < b.maxT*(1-clear); T = T1 + float64(len(out)) {
 		lo, hi := b.limits(T, T+1)
-		c := b.column(T+0.5, max(lo*(1+clear), p1), min(hi*(1-clear), p2), n, b.most-total)
-		n = len(c.cells)
-		total += n
+		var c column[C]
+		c, n = b.column(T+0.5, max(lo*(1+clear), p1), min(hi*(1-clear), p2), n)
+		total += len(c.cells)
 		out = append(out, c)
 	}
 	if total == 0 {
@@ -58,39 +61,48 @@ func (b *builder[C]) columns(T1, T2, p1, p2 float64) []column[C] {
 	return out
 }
 
-const mostInColumn = 40
+const (
+	mostInColumn = 40     // cells
+	mostWorked   = 44_000 // states in building a table, 2000 cells at most
+)
 
-// column has as few cells as are good enough; the search begins one below the
-// number of the column before.
-func (b *builder[C]) column(T, lo, hi float64, before, most int) column[C] {
+// column has as few cells as are good enough; the search begins a little below
+// the number of the column before, and steps by an eighth. It returns the number
+// at which the search ended.
+func (b *builder[C]) column(T, lo, hi float64, before int) (column[C], int) {
 	if !(lo < hi) {
-		return column[C]{}
+		return column[C]{}, before
 	}
-	for n := max(before-1, 1); n <= min(most, mostInColumn); n++ {
-		if cells := b.cells(T, lo, (hi-lo)/float64(n), n); cells != nil {
+	n := max(before-max(before/8, 1), 1)
+	for ; n <= mostInColumn; n += max(n/8, 1) {
+		if b.fill(b.room[:n], T, lo, (hi-lo)/float64(n)) {
 			perPascal := float64(n) / (hi - lo)
-			return column[C]{lo + 0.5/perPascal, perPascal, cells}
+			return column[C]{lo + 0.5/perPascal, perPascal, slices.Clone(b.room[:n])}, n
 		}
 	}
-	return column[C]{}
+	return column[C]{}, min(n, mostInColumn)
 }
 
-// cells returns nil when one is not good enough. It begins where that is most
-// likely: next to saturation.
-func (b *builder[C]) cells(T, lo, height float64, n int) []C {
-	cells := make([]C, n)
+// fill is false when a cell is not good enough, or would be one too many to work.
+// It begins where that is most likely: next to saturation.
+func (b *builder[C]) fill(cells []C, T, lo, height float64) bool {
 	for k := range cells {
+		if b.worked+statesOfCell > mostWorked {
+			return false
+		}
 		if b.gas {
-			k = n - 1 - k
+			k = len(cells) - 1 - k
 		}
 		p := lo + (float64(k)+0.5)*height
 		s := b.sample(T, p, height)
-		b.fit(&cells[k], &s)
-		if !b.good(&cells[k], T, p, height) {
-			return nil
+		var c C
+		b.fit(&c, &s)
+		if !b.good(&c, &s, T, p, height) {
+			return false
 		}
+		cells[k] = c
 	}
-	return cells
+	return true
 }
 
 // sample works the factors of the powers of x = T' − T at each node of pressure:
@@ -99,7 +111,8 @@ func (b *builder[C]) cells(T, lo, height float64, n int) []C {
 func (b *builder[C]) sample(T, p, height float64) (s samples) {
 	for k, y := range nodes {
 		at := p + y*height
-		l, m, r := b.balance(T-0.5, at), b.balance(T, at), b.balance(T+0.5, at)
+		l, m, r := b.state(T-0.5, at), b.state(T, at), b.state(T+0.5, at)
+		s.states[k] = [3]thermo.Balance{l, m, r}
 		rise := r.Enthalpy - l.Enthalpy
 		s.h[0][k] = (l.Enthalpy+r.Enthalpy)/2 + (l.Cp-r.Cp)/8
 		s.h[1][k] = 1.5*rise - (l.Cp+r.Cp)/4
@@ -116,6 +129,11 @@ func (b *builder[C]) sample(T, p, height float64) (s samples) {
 	return s
 }
 
+func (b *builder[C]) state(T, p float64) thermo.Balance {
+	b.worked++
+	return b.balance(T, p)
+}
+
 // What a cell may be off by where it is looked at, so much less than what is
 // promised that it keeps the promise in between.
 const (
@@ -123,25 +141,41 @@ const (
 	tabulatedOne = 1.2e-6 // of the enthalpy of 1 K; a difference has two such errors
 )
 
-// good compares a cell with the equation at its worst pressures, the edges, and
-// between them, and where the temperature is at or between the interpolated ones.
-func (b *builder[C]) good(c *C, T, p, height float64) bool {
-	for _, y := range [...]float64{-0.49, -0.15, 0.49} {
-		for _, x := range [...]float64{0, 0.3, -0.5} {
-			at := p + y*height
-			want := b.balance(T+x, at)
-			h, _, density := b.at(c, x, y)
-			if b.gas {
-				density *= at
-			}
-			off := math.Abs(h - want.Enthalpy)
-			if !(off <= tabulatedOne*want.Cp && off <= tabulated*max(math.Abs(want.Enthalpy), 1e3) &&
-				math.Abs(density/want.Density-1) <= tabulated) {
+// probes are further states of a cell, by x and y: at the edges of pressure, and
+// where the temperature is between the interpolated ones.
+var probes = [...][2]float64{{-0.5, -0.49}, {0.5, 0.49}, {-0.5, 0.49}, {0.5, -0.49}, {0.3, -0.49}, {-0.3, 0.49}, {0.3, 0.15}}
+
+// statesOfCell is how often the equation is worked for a cell.
+const statesOfCell = 3*len(nodes) + len(probes)
+
+// good compares a cell with the equation at its samples, where what the series
+// leave out is near its largest, and at the probes.
+func (b *builder[C]) good(c *C, s *samples, T, p, height float64) bool {
+	for k, y := range nodes {
+		for i, x := range [...]float64{-0.5, 0, 0.5} {
+			if !b.near(c, x, y, p+y*height, &s.states[k][i]) {
 				return false
 			}
 		}
 	}
+	for _, at := range probes {
+		x, y := at[0], at[1]
+		want := b.state(T+x, p+y*height)
+		if !b.near(c, x, y, p+y*height, &want) {
+			return false
+		}
+	}
 	return true
+}
+
+func (b *builder[C]) near(c *C, x, y, p float64, want *thermo.Balance) bool {
+	h, _, density := b.at(c, x, y)
+	if b.gas {
+		density *= p
+	}
+	off := math.Abs(h - want.Enthalpy)
+	return off <= tabulatedOne*want.Cp && off <= tabulated*max(math.Abs(want.Enthalpy), 1e3) &&
+		math.Abs(density-want.Density) <= tabulated*want.Density
 }
 
 // nodes are the zeros of the Chebyshev polynomial of degree 5, halved: pressures
