@@ -84,6 +84,10 @@ func (r *reader) readFluids(o object) {
 			e.key.fault("is built in; choose another name for a fluid of your own")
 			continue
 		}
+		if other, twice := alike(e.name, slices.Sorted(maps.Keys(r.fluids))); twice {
+			e.key.fault("differs from %q in its spelling only; choose another name", other)
+			continue
+		}
 		f := r.declare(e.name, e.value)
 		r.fluids[e.name] = f
 		if f != nil {
@@ -92,8 +96,8 @@ func (r *reader) readFluids(o object) {
 	}
 }
 
-// fluid finds the fluid that a load names: one of the file, or one that is built in,
-// which goes by its usual name.
+// fluid finds the fluid that a load names, in any spelling: one of the file, or one that is
+// built in, which goes by its usual name.
 func (r *reader) fluid(v value) (string, thermo.Fluid) {
 	if v.node.Kind == yaml.MappingNode {
 		v.fault("want the name of a fluid, found a mapping; declare it under fluids, and name it here")
@@ -103,8 +107,8 @@ func (r *reader) fluid(v value) (string, thermo.Fluid) {
 	if !ok {
 		return "", nil
 	}
-	if f, declared := r.fluids[s]; declared {
-		return s, f
+	if name, declared := alike(s, slices.Sorted(maps.Keys(r.fluids))); declared {
+		return name, r.fluids[name]
 	}
 	f, err := named.Lookup(s)
 	var unknown *named.UnknownError
@@ -138,7 +142,7 @@ func (r *reader) declare(name string, v value) thermo.Fluid {
 	if r.namedAsKey(v) {
 		return nil
 	}
-	o := v.objectOf(fluidKeys())
+	o := v.objectOf(fluidKeys(), fluidKinds())
 	var found []kind
 	for _, k := range kinds() {
 		if _, ok := o.get(k.key); ok {
@@ -167,7 +171,10 @@ func (r *reader) declare(name string, v value) thermo.Fluid {
 // namedAsKey notes the fault of a declaration that has a name in the place of its kind,
 // such as {water: } or {glycol: 30 %}.
 func (r *reader) namedAsKey(v value) bool {
-	if v.node.Kind != yaml.MappingNode || len(v.node.Content) == 0 || slices.Contains(fluidKeys(), v.node.Content[0].Value) {
+	if v.node.Kind != yaml.MappingNode || len(v.node.Content) == 0 {
+		return false
+	}
+	if _, ok := alike(v.node.Content[0].Value, fluidKeys()); ok {
 		return false
 	}
 	key := value{v.scope, v.node.Content[0], join(v.path, v.node.Content[0].Value)}

@@ -49,7 +49,7 @@ func (o object) model() (gas.Model, bool) {
 	if !given {
 		return gas.Best, true
 	}
-	s, ok := v.oneOf(gas.Models()...)
+	s, ok := v.oneOfNames(gas.Models()...)
 	if !ok {
 		return gas.Best, false
 	}
@@ -66,7 +66,7 @@ func (v value) shares(names []string, want string, read basis) (map[string]float
 		v.fault("want %s, found %s", want, v.kind())
 		return nil, false
 	}
-	o := v.objectOf(names)
+	o := v.objectOf(names, names)
 	all := make(map[string]float64, len(o.has))
 	for name, e := range o.has {
 		if share, ok := read(e.value, 0, 1, "0 % to 100 %"); ok {

@@ -34,6 +34,14 @@ func TestParseFluid(t *testing.T) {
 		{"{moist air: {dew point: 12 °C}}", "moist air 8.73 g/kg"},
 		{"{food: {water: 90 %, carbohydrate: 10 %}}", "food: {water: 90 %, carbohydrate: 10 %}"},
 		{"{seawater: 35 g/kg}", "seawater 35 g/kg"},
+		{"{Propylene Glycol: 32 %}", "propylene glycol 32 %"},
+		{"{propylene-glycol: 32 %, uncertainty: 0.6 %}", "propylene glycol 32 %"},
+		{"{Gas: {n2: 79 %, o2: 21 %}, model: Ideal}", "gas: {N2: 79 %, O2: 21 %}, model: ideal"},
+		{"{GAS: {Dry-Air: 100 %}, model: Peng Robinson}", "dry air, model: peng-robinson"},
+		{"{Seawater: 35 g/kg}", "seawater 35 g/kg"},
+		{"{Flue-Gas: {fuel: {ch4: 100 %}, excess air: 0 %}}", "gas: {N2: 70.68 %, H2O: 18.96 %, CO2: 9.51 %, Ar: 0.8477 %}"},
+		{"{Moist Air: {dew point: 12 °C}}", "moist air 8.73 g/kg"},
+		{"{Food: {Water: 90 %, Carbohydrate: 10 %}}", "food: {water: 90 %, carbohydrate: 10 %}"},
 		{"{petroleum: {density: 870 kg/m3}}", "petroleum 870 kg/m³"},
 		{"{petroleum: {density: 850 kg/m3, group: Diesel}}", "fuel oil 850 kg/m³"},
 		{"{petroleum: {density: 800 kg/m3, group: jet fuel}}", "jet-kerosene 800 kg/m³"},
@@ -47,6 +55,39 @@ func TestParseFluid(t *testing.T) {
 		if err != nil || f.Name() != tt.name {
 			t.Errorf("ParseFluid(%q) = %v, %v; want %q", tt.text, f, err, tt.name)
 		}
+	}
+}
+
+// The elements of a fuel are found in any case as well.
+func TestElementsInAnyCase(t *testing.T) {
+	var names []string
+	for _, text := range []string{"{flue gas: {elements: {C: 86 %, H: 13 %, water: 1 %}, oxygen: 3 %}}", "{flue gas: {elements: {c: 86 %, h: 13 %, Water: 1 %}, oxygen: 3 %}}"} {
+		f, err := ParseFluid(text)
+		if err != nil {
+			t.Fatal(err)
+		}
+		names = append(names, f.Name())
+	}
+	if names[0] != names[1] {
+		t.Errorf("%q and %q", names[0], names[1])
+	}
+}
+
+// A load finds a fluid of the file in any spelling, under its own; two that differ in no
+// more are one too many.
+func TestFluidsOfTheFileInAnySpelling(t *testing.T) {
+	text := strings.Replace(plant, "  flue: {gas: {N2: 71 %, CO2: 9 %, H2O: 18 %, O2: 2 %}}", "  flue gas 2: {gas: {N2: 88 %, CO2: 9 %, O2: 3 %}}", 1)
+	text = strings.Replace(text, "fluid: dry air", "fluid: Flue-Gas-2", 1)
+	s, err := Parse("plant.yaml", []byte(text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if got := s.Loads[1].Stream.FluidName; got != "flue gas 2" {
+		t.Errorf("the load's fluid is %q", got)
+	}
+	_, err = Parse("plant.yaml", []byte(strings.Replace(text, "fluids:\n", "fluids:\n  FlueGas2: {ethanol: 20 %}\n", 1)))
+	if err == nil || !strings.Contains(err.Error(), `differs from "FlueGas2" in its spelling only; choose another name`) {
+		t.Errorf("two fluids of one name: %v", err)
 	}
 }
 
@@ -77,7 +118,14 @@ func TestTableHasItsMolarMass(t *testing.T) {
 func TestParseFluidFaults(t *testing.T) {
 	for _, tt := range []struct{ text, want string }{
 		{"watr", `fluid "watr" is not known; near: "water"; known: `},
-		{"{gas: {N2: 79 %, n2: 21 %}}", `fluid:1:18: gas.n2: unknown key "n2"; near: "N2"`},
+		{"{gas: {N2: 79 %, n2: 21 %}}", `fluid:1:18: gas.N2: stands twice; first in line 1, as "N2"`},
+		{"{Propylene Glycol: 30 %, propylene-glycol: 30 %}", `fluid:1:26: "propylene glycol": stands twice; first in line 1, as "Propylene Glycol"`},
+		{"{propylene glycol: 30 %, Ethanol: 30 %}", `ethanol: stands beside "propylene glycol"`},
+		{"{Gas: {N2: 79 %}}", "fluid:1:7: gas: the mole fractions add up to 0.79"},
+		{"{gas: {N2: 100 %}, model: ideel}", `model: "ideel" is not known; near: "ideal"; allowed: best, ideal, `},
+		{"{gas: {N2: 100 %}, Model: ideal}", `unknown key "Model"; near: "model"`},
+		{"{Food: {water: 60 %, Water: 40 %}}", `food.water: stands twice`},
+		{"{moist air: {Relative Humidity: 50 %, at: 20 °C}}", `unknown key "Relative Humidity"; near: "relative humidity"`},
 		{"{gas: {N2: 79 %}}", "fluid:1:7: gas: the mole fractions add up to 0.79"},
 		{"{gas: {N2: 79 %}", "this is not YAML: "},
 		{"{gas:{N2:79 %,O2:21 %}}", "this is not YAML (a colon is followed by a space)"},

@@ -78,12 +78,19 @@ type object struct {
 // object reads v as the block of that name; see [Keys]. An unknown key is a
 // fault.
 func (v value) object(block string) object {
-	return v.objectOf(keys[block])
+	return v.objectOf(keys[block], nil)
 }
 
-func (v value) objectOf(allowed []string) object {
+// objectOf reads v with the keys that are allowed. Those of names are names of substances and
+// the like, and are found in any case, with spaces or hyphens.
+func (v value) objectOf(allowed, names []string) object {
 	o := object{value: v, has: make(map[string]entry)}
 	for _, e := range v.entries() {
+		e = e.spelled(allowed, names)
+		if first, twice := o.has[e.name]; twice {
+			e.key.fault("stands twice; first in line %d, as %q", first.key.node.Line, first.key.node.Value)
+			continue
+		}
 		if !slices.Contains(allowed, e.name) {
 			guess := meant(e.name, allowed)
 			o.meant = append(o.meant, guess...)

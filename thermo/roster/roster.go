@@ -18,13 +18,13 @@ const longest = 60
 // names to one of names. what says in the error of an unknown name what was sought, such as
 // "solid"; the error tells the near names and all of them.
 func Find(what, name string, names []string, also map[string]string) (int, error) {
-	sought := fold(name)
+	sought := Fold(name)
 	known := make(map[string]string, len(names)+len(also))
 	for other, n := range also {
-		known[fold(other)] = n
+		known[Fold(other)] = n
 	}
 	for _, n := range names {
-		known[fold(n)] = n
+		known[Fold(n)] = n
 	}
 	if n, ok := known[sought]; ok {
 		if k := slices.Index(names, n); k >= 0 {
@@ -65,8 +65,8 @@ func hint(sought string, known map[string]string, names []string) string {
 	return ", did you mean " + strings.Join(guess, " or ")
 }
 
-// fold keeps what tells two names apart.
-func fold(name string) string {
+// Fold keeps what tells two names apart: no case, spaces, hyphens or underscores.
+func Fold(name string) string {
 	return strings.Map(func(r rune) rune {
 		if unicode.IsSpace(r) || unicode.Is(unicode.Pd, r) || r == '_' {
 			return -1
