@@ -74,13 +74,13 @@ func TestAgainstTable(t *testing.T) {
 			deviations.Note("real density", beyondDigits(s.Density-r.iapwsRho, 0.5e-5)/r.iapwsRho)
 			deviations.Note("real cp", beyondDigits(s.Cp*dry-r.iapwsCp, 0.005)/r.iapwsCp)
 			cp, density := f.Uncertainty(r.T, r.p)
-			if math.Sqrt(3)*cp < deviations["real cp"] || math.Sqrt(3)*density < deviations["real density"] {
+			if !(math.Sqrt(3)*cp >= deviations["real cp"] && math.Sqrt(3)*density >= deviations["real density"]) {
 				t.Errorf("%+v: standard uncertainties %g and %g do not cover %v", r, cp, density, deviations)
 			}
 		}
 		for name, d := range deviations {
 			got.Note(name, d)
-			if d > tolerance[name] {
+			if !(d <= tolerance[name]) {
 				t.Errorf("%g K, RH %g, %g Pa: %s is off by %.3g, more than %g", r.T, r.rh, r.p, name, d, tolerance[name])
 			}
 		}
@@ -108,10 +108,10 @@ func TestWorstCorners(t *testing.T) {
 		s, err := f.At(tt.T, tt.p)
 		cp, density := f.Uncertainty(tt.T, tt.p)
 		dCp, dRho := s.Cp/tt.cp-1, s.Density/tt.density-1
-		if err != nil || math.Abs(100*dCp-tt.dCp) > 0.006 || math.Abs(100*dRho-tt.dRho) > 0.006 {
+		if err != nil || !(math.Abs(100*dCp-tt.dCp) <= 0.006) || !(math.Abs(100*dRho-tt.dRho) <= 0.006) {
 			t.Errorf("%g K, %g Pa, W %g: cp %.3f %% and density %.3f %% off, want %g and %g; %v", tt.T, tt.p, tt.w, 100*dCp, 100*dRho, tt.dCp, tt.dRho, err)
 		}
-		if math.Abs(dCp) > math.Sqrt(3)*cp || math.Abs(dRho) > math.Sqrt(3)*density {
+		if !(math.Abs(dCp) <= math.Sqrt(3)*cp) || !(math.Abs(dRho) <= math.Sqrt(3)*density) {
 			t.Errorf("%g K, %g Pa, W %g: uncertainties %.3f %% and %.3f %%", tt.T, tt.p, tt.w, 100*cp, 100*density)
 		}
 	}
@@ -124,7 +124,7 @@ func beyondDigits(d, half float64) float64 { return math.Max(math.Abs(d)-half, 0
 func TestSensibleBelowTheDewPoint(t *testing.T) {
 	f := mustMoist(t, 0.01)
 	dew, _ := f.Span(101325)
-	if math.Abs(dew-zero-14.04) > 0.02 { // 10 g/kg at 101.325 kPa, read off a psychrometric chart
+	if !(math.Abs(dew-zero-14.04) <= 0.02) { // 10 g/kg at 101.325 kPa, read off a psychrometric chart
 		t.Errorf("dew point %g °C", dew-zero)
 	}
 	_, err := f.At(dew-1, 101325)
@@ -137,7 +137,7 @@ func TestSensibleBelowTheDewPoint(t *testing.T) {
 	if err := errors.Join(err, err2); err != nil {
 		t.Fatal(err)
 	}
-	if d := above.Enthalpy - s.Enthalpy; math.Abs(d-2*s.Cp) > 1e-8 {
+	if d := above.Enthalpy - s.Enthalpy; !(math.Abs(d-2*s.Cp) <= 1e-8) {
 		t.Errorf("2 K across the dew point take %g J/kg, want cp times 2 K = %g", d, 2*s.Cp)
 	}
 }

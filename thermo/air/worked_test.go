@@ -40,7 +40,7 @@ func TestChartExample(t *testing.T) {
 		{"dew point in °C", dew - zero, 7, 1},
 		{"relative humidity in %", 100 * rh, 14, 0.5},
 	} {
-		if math.Abs(c.got-c.want) > c.tolerance {
+		if !(math.Abs(c.got-c.want) <= c.tolerance) {
 			t.Errorf("%s: %.4g, want %g ± %g", c.name, c.got, c.want, c.tolerance)
 		}
 	}
@@ -58,7 +58,7 @@ func TestCoolingAtConstantRatio(t *testing.T) {
 	}
 	m := in.Density // kg/s, for 1 m³/s
 	q, err := thermo.StreamHeat(f, m, 303.15, p, 291.15, p)
-	if err != nil || math.Abs(q/-14096.746-1) > 1e-6 || math.Abs(m/(1+w)/1.1424726-1) > 1e-6 {
+	if err != nil || !(math.Abs(q/-14096.746-1) <= 1e-6) || !(math.Abs(m/(1+w)/1.1424726-1) <= 1e-6) {
 		t.Errorf("%.3f W, %.7f kg/s of dry air, %v", q, m/(1+w), err)
 	}
 }
@@ -75,7 +75,7 @@ func TestHeatingOfSaturatedAir(t *testing.T) {
 	}
 	m := 10 * in.Density
 	q, err := thermo.StreamHeat(f, m, 275.15, p, 313.15, p)
-	if err != nil || math.Abs(q-490.9e3) > 0.1e3 || math.Abs(m/(1+w)-12.76) > 0.025 {
+	if err != nil || !(math.Abs(q-490.9e3) <= 0.1e3) || !(math.Abs(m/(1+w)-12.76) <= 0.025) {
 		t.Errorf("%.1f W, %.4f kg/s of dry air, %v", q, m/(1+w), err)
 	}
 }

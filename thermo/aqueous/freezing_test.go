@@ -25,7 +25,7 @@ func TestFreezingPoints(t *testing.T) {
 		f := mustNew(t, tt.solute, tt.x, 0)
 		got, _ := f.Span(pressure)
 		t.Logf("%s: %.2f °C, table %.1f", f.Name(), got-273.15, tt.want)
-		if math.Abs(got-273.15-tt.want) > tt.tol {
+		if !(math.Abs(got-273.15-tt.want) <= tt.tol) {
 			t.Errorf("%s freezes at %.2f °C, want %.1f within %g K", f.Name(), got-273.15, tt.want, tt.tol)
 		}
 	}
@@ -52,7 +52,7 @@ func TestGuardOfEthyleneGlycol(t *testing.T) {
 		}
 	}
 	t.Logf("up to %.2f K above Melinder's", widest)
-	if math.Abs(widest-2.9) > 0.05 {
+	if !(math.Abs(widest-2.9) <= 0.05) {
 		t.Errorf("up to %.2f K above Melinder's, want 2.9", widest)
 	}
 }
@@ -61,7 +61,7 @@ func TestGuardOfEthyleneGlycol(t *testing.T) {
 func TestVagueStrengthFreezesEarly(t *testing.T) {
 	for _, s := range Solutes() {
 		exact, vague, weaker := mustNew(t, s, 0.15, 0), mustNew(t, s, 0.15, 0.01), mustNew(t, s, 0.13, 0)
-		if got, want := vague.Bounds().MinT, weaker.Bounds().MinT; math.Abs(got-want) > 1e-9 || !(got > exact.Bounds().MinT) {
+		if got, want := vague.Bounds().MinT, weaker.Bounds().MinT; !(math.Abs(got-want) <= 1e-9) || !(got > exact.Bounds().MinT) {
 			t.Errorf("%s freezes at %g K, want %g, above %g", s, got, want, exact.Bounds().MinT)
 		}
 		vaguest, water := mustNew(t, s, 0.05, 0.05), mustNew(t, s, 0, 0)

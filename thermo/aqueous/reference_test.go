@@ -26,10 +26,10 @@ func TestPolynomials(t *testing.T) {
 		}
 		count++
 		worst = max(worst, math.Abs(p.Density/r.fitDensity-1), math.Abs(p.Cp/r.fitCp-1))
-		if math.Abs(p.Density-r.fitDensity) > 6e-6*r.fitDensity+0.00006 || math.Abs(p.Cp-r.fitCp) > 6e-6*r.fitCp+0.0006 {
+		if !(math.Abs(p.Density-r.fitDensity) <= 6e-6*r.fitDensity+0.00006) || !(math.Abs(p.Cp-r.fitCp) <= 6e-6*r.fitCp+0.0006) {
 			t.Errorf("%s %g K: density %.5f, cp %.4f; want %.4f, %.3f", m.Name(), r.T, p.Density, p.Cp, r.fitDensity, r.fitCp)
 		}
-		if s, err := lookup(r.solute); err != nil || math.Abs(s.freezesAt(r.x)-r.fitFreezing) > 0.006 {
+		if s, err := lookup(r.solute); err != nil || !(math.Abs(s.freezesAt(r.x)-r.fitFreezing) <= 0.006) {
 			t.Errorf("%s: freezes at %.4f K, %v, want %.2f", m.Name(), s.freezesAt(r.x), err, r.fitFreezing)
 		}
 	}
@@ -101,7 +101,7 @@ func TestAgainstReferences(t *testing.T) {
 			}
 			d := 100 * (got/want - 1)
 			*worst = max(*worst, math.Abs(d))
-			if math.Abs(d) > limit || math.Abs(d-stated) > 0.002 || math.Abs(d) > 200*u {
+			if !(math.Abs(d) <= limit) || !(math.Abs(d-stated) <= 0.002) || !(math.Abs(d) <= 200*u) {
 				t.Errorf("%s %g K, %s: %s is off by %.4f %%; the file says %g, the limit is %g, twice the uncertainty %.3f", m.Name(), r.T, key, quantity, d, stated, limit, 200*u)
 			}
 		}

@@ -28,7 +28,7 @@ func TestUncertaintyOfConcentration(t *testing.T) {
 			}
 			wantCp := math.Hypot(cp0, u*math.Log(b.Cp/a.Cp)/2e-5)
 			wantRho := math.Hypot(rho0, u*math.Log(b.Density/a.Density)/2e-5)
-			if math.Abs(cp/wantCp-1) > 1e-6 || math.Abs(rho/wantRho-1) > 1e-6 || !(cp > cp0 && rho > rho0) {
+			if !(math.Abs(cp/wantCp-1) <= 1e-6) || !(math.Abs(rho/wantRho-1) <= 1e-6) || !(cp > cp0 && rho > rho0) {
 				t.Errorf("%s at %g K: %g and %g, want %g and %g", vague.Name(), T, cp, rho, wantCp, wantRho)
 			}
 		}
@@ -54,7 +54,7 @@ func TestDriftIsInTheUncertainty(t *testing.T) {
 		s := &solutes[k]
 		for T := 190.0; T < s.maxT; T += 0.01 {
 			a, b := deviationAt(s.deviation, T), deviationAt(s.deviation, T+0.01)
-			if math.Abs(b.cp-a.cp) > 0.005 || math.Abs(b.density-a.density) > 0.005 || !(a.cp > 0 && a.density > 0) {
+			if !(math.Abs(b.cp-a.cp) <= 0.005) || !(math.Abs(b.density-a.density) <= 0.005) || !(a.cp > 0 && a.density > 0) {
 				t.Errorf("%s: %+v, then %+v", s.name, a, b)
 			}
 		}
@@ -85,16 +85,16 @@ func TestWaterIsTheLimit(t *testing.T) {
 			u, uRho := f.Uncertainty(T, p)
 			dCp, dRho := math.Abs(got.Cp/want.Cp-1), math.Abs(got.Density/want.Density-1)
 			worstCp, worstRho = max(worstCp, dCp), max(worstRho, dRho)
-			if dCp > 2*u || dRho > 2*uRho {
+			if !(dCp <= 2*u) || !(dRho <= 2*uRho) {
 				t.Errorf("%s at %g K: cp is off by %g, density by %g", f.Name(), T, dCp, dRho)
 			}
-			if math.Abs(near.Cp/got.Cp-1) > 1e-5 || math.Abs(near.Density/got.Density-1) > 1e-5 {
+			if !(math.Abs(near.Cp/got.Cp-1) <= 1e-5) || !(math.Abs(near.Density/got.Density-1) <= 1e-5) {
 				t.Errorf("%s at %g K: %+v, with nothing dissolved %+v", trace.Name(), T, near, got)
 			}
 		}
 	}
 	t.Logf("worst: cp %.3f %%, density %.3f %%, freezing point %.3f K", 100*worstCp, 100*worstRho, worstFreezing)
-	if worstCp > 0.0069 || worstRho > 0.0014 || worstFreezing > 0.05 {
+	if !(worstCp <= 0.0069) || !(worstRho <= 0.0014) || !(worstFreezing <= 0.05) {
 		t.Errorf("off IAPWS-IF97 by %g in cp, %g in density, %g K in freezing point", worstCp, worstRho, worstFreezing)
 	}
 }
@@ -117,7 +117,7 @@ func TestFitUncertainty(t *testing.T) {
 		f := mustNew(t, tt.solute, 0.1, 0)
 		cp, density := f.Uncertainty(tt.T, 101325)
 		wantCp, wantRho := math.Hypot(tt.cp/100/math.Sqrt(3), 0.005), math.Hypot(tt.density/100/math.Sqrt(3), 0.0005)
-		if math.Abs(cp-wantCp) > 1e-9 || math.Abs(density-wantRho) > 1e-9 {
+		if !(math.Abs(cp-wantCp) <= 1e-9) || !(math.Abs(density-wantRho) <= 1e-9) {
 			t.Errorf("%s at %g K: %.6f, %.6f; want %.6f, %.6f", tt.solute, tt.T, cp, density, wantCp, wantRho)
 		}
 	}

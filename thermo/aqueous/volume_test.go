@@ -26,7 +26,7 @@ func TestVolumeAgainstTables(t *testing.T) {
 		}
 		x := s.massFraction(tt.volume)
 		t.Logf("%s %g vol %%: %.4f by mass, table %.4f", tt.solute, 100*tt.volume, x, tt.mass)
-		if math.Abs(x-tt.mass) > tt.tol {
+		if !(math.Abs(x-tt.mass) <= tt.tol) {
 			t.Errorf("%s %g vol %%: %.4f by mass, want %.4f", tt.solute, 100*tt.volume, x, tt.mass)
 		}
 	}
@@ -45,12 +45,12 @@ func TestVolumeAndMassAgree(t *testing.T) {
 			g := mustNew(t, s.name, x, 0.01/slope)
 			a, err1 := f.At(290, pressure)
 			b, err2 := g.At(290, pressure)
-			if err1 != nil || err2 != nil || math.Abs(a.Cp/b.Cp-1) > 1e-12 || math.Abs(a.Density/b.Density-1) > 1e-12 {
+			if err1 != nil || err2 != nil || !(math.Abs(a.Cp/b.Cp-1) <= 1e-12) || !(math.Abs(a.Density/b.Density-1) <= 1e-12) {
 				t.Errorf("%s: %+v %v, by mass %+v %v", f.Name(), a, err1, b, err2)
 			}
 			ua, va := f.Uncertainty(290, pressure)
 			ub, vb := g.Uncertainty(290, pressure)
-			if math.Abs(ua/ub-1) > 1e-7 || math.Abs(va/vb-1) > 1e-7 {
+			if !(math.Abs(ua/ub-1) <= 1e-7) || !(math.Abs(va/vb-1) <= 1e-7) {
 				t.Errorf("%s: uncertainties %g and %g, by mass %g and %g", f.Name(), ua, va, ub, vb)
 			}
 		}

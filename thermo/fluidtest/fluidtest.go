@@ -145,7 +145,7 @@ func (s suite) balance(t report) {
 			continue
 		}
 		scale := math.Abs(p.Enthalpy) + st.p/p.Density
-		if math.Abs(got.Enthalpy-p.Enthalpy) > 1e-12*scale || math.Abs(got.Cp/p.Cp-1) > 1e-12 || math.Abs(got.Density/p.Density-1) > 1e-12 {
+		if !(math.Abs(got.Enthalpy-p.Enthalpy) <= 1e-12*scale) || !(math.Abs(got.Cp/p.Cp-1) <= 1e-12) || !(math.Abs(got.Density/p.Density-1) <= 1e-12) {
 			t.Errorf("%g K, %g Pa: balance %+v, properties %+v", st.T, st.p, got, p)
 		}
 	}

@@ -51,8 +51,8 @@ func (s suite) seam(t report, f thermo.Wet, p float64) {
 		return
 	}
 	step := above.Enthalpy - below.Enthalpy
-	if math.Abs(step-2*hair*dew*above.Cp) > 1e-9*(math.Abs(above.Enthalpy)+dew*above.Cp) ||
-		math.Abs(below.Cp/above.Cp-1) > 1e-6 || math.Abs(below.Cv/above.Cv-1) > 1e-6 || math.Abs(below.Density/above.Density-1) > 1e-6 {
+	if !(math.Abs(step-2*hair*dew*above.Cp) <= 1e-9*(math.Abs(above.Enthalpy)+dew*above.Cp)) ||
+		!(math.Abs(below.Cp/above.Cp-1) <= 1e-6) || !(math.Abs(below.Cv/above.Cv-1) <= 1e-6) || !(math.Abs(below.Density/above.Density-1) <= 1e-6) {
 		t.Errorf("dew point, %g K at %g Pa: %+v below, %+v above", dew, p, below, above)
 	}
 }

@@ -34,7 +34,7 @@ func TestNaiveAgrees(t *testing.T) {
 		for T := 274.0; T < 373; T += 7 {
 			s, err := f.At(T, atm)
 			h, cp, rho := naive(p.Composition, T-zeroC)
-			if err != nil || math.Abs(s.Enthalpy/h-1) > 1e-12 || math.Abs(s.Cp/cp-1) > 1e-13 || math.Abs(s.Density/rho-1) > 1e-13 {
+			if err != nil || !(math.Abs(s.Enthalpy/h-1) <= 1e-12) || !(math.Abs(s.Cp/cp-1) <= 1e-13) || !(math.Abs(s.Density/rho-1) <= 1e-13) {
 				t.Errorf("%s at %g K: %+v, %v; naive h %g, cp %g, density %g", p.name, T, s, err, h, cp, rho)
 			}
 		}

@@ -74,7 +74,7 @@ func TestChecks(t *testing.T) {
 		}
 		d := max(math.Abs(got.Cp/c.cp-1), math.Abs(got.Density/c.density-1))
 		worst = max(worst, d)
-		if d > tolerance {
+		if !(d <= tolerance) {
 			t.Errorf("%s at %g K: cp %.9g, density %.9g; want %g, %g within %g", c.food, c.T, got.Cp, got.Density, c.cp, c.density, tolerance)
 		}
 		if f, err := New(c.composition); err == nil {
@@ -98,7 +98,7 @@ func TestProductsAreTheChecked(t *testing.T) {
 		}
 		n++
 		got, err := f.At(c.T, 3e5)
-		if err != nil || math.Abs(got.Cp/c.cp-1) > 3e-7 || math.Abs(got.Density/c.density-1) > 3e-7 {
+		if err != nil || !(math.Abs(got.Cp/c.cp-1) <= 3e-7) || !(math.Abs(got.Density/c.density-1) <= 3e-7) {
 			t.Errorf("%s at %g K: %+v, %v; want cp %g, density %g", c.food, c.T, got, err, c.cp, c.density)
 		}
 	}
@@ -121,7 +121,7 @@ func TestHandbookMilk(t *testing.T) {
 		u, _ := f.Uncertainty(c.T, atm)
 		d := math.Abs(got.Cp/c.handbook - 1)
 		t.Logf("%s: cp %.1f, handbook %g, deviation %.2f %%, stated half-width %.2f %%", c.food, got.Cp, c.handbook, 100*d, 100*u*math.Sqrt(3))
-		if err != nil || !(d < limit[c.food]) || d > u*math.Sqrt(3) {
+		if err != nil || !(d < limit[c.food]) || !(d <= u*math.Sqrt(3)) {
 			t.Errorf("%s: cp %g, %v; handbook %g", c.food, got.Cp, err, c.handbook)
 		}
 	}
@@ -143,12 +143,12 @@ func TestWorkedHeat(t *testing.T) {
 		m := tt.mass
 		if tt.volume > 0 {
 			s, err := f.At(tt.T1, 3e5)
-			if m = tt.volume * s.Density; err != nil || math.Abs(m/tt.mass-1) > 1e-6 {
+			if m = tt.volume * s.Density; err != nil || !(math.Abs(m/tt.mass-1) <= 1e-6) {
 				t.Errorf("%s: %.9g kg/s, %v; want %.9g", tt.food, m, err, tt.mass)
 			}
 		}
 		q, err := thermo.StreamHeat(f, m, tt.T1, 3e5, tt.T2, 3e5)
-		if err != nil || math.Abs(q/tt.heat-1) > 1e-6 {
+		if err != nil || !(math.Abs(q/tt.heat-1) <= 1e-6) {
 			t.Errorf("%s: %.9g W, %v; want %.9g", tt.food, q, err, tt.heat)
 		}
 	}
@@ -177,7 +177,7 @@ func TestBounds(t *testing.T) {
 	} {
 		_, err := tt.f.At(tt.T, tt.p)
 		e := new(thermo.RangeError)
-		if !errors.As(err, &e) || e.Why != tt.why || math.Abs(e.Bound-tt.end) > 1e-3 {
+		if !errors.As(err, &e) || e.Why != tt.why || !(math.Abs(e.Bound-tt.end) <= 1e-3) {
 			t.Errorf("%g K, %g Pa: %v; want %g, %q", tt.T, tt.p, err, tt.end, tt.why)
 		}
 	}

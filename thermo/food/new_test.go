@@ -32,7 +32,7 @@ func TestCompositionIsScaled(t *testing.T) {
 	short := mustNew(t, Composition{Water: 0.875 * 0.996, Carbohydrate: 0.125 * 0.996})
 	a, err1 := whole.At(300, atm)
 	b, err2 := short.At(300, atm)
-	if err1 != nil || err2 != nil || math.Abs(a.Cp/b.Cp-1) > 1e-14 || math.Abs(a.Density/b.Density-1) > 1e-14 {
+	if err1 != nil || err2 != nil || !(math.Abs(a.Cp/b.Cp-1) <= 1e-14) || !(math.Abs(a.Density/b.Density-1) <= 1e-14) {
 		t.Errorf("%+v, %v; scaled %+v, %v", a, err1, b, err2)
 	}
 }

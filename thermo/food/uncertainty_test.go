@@ -47,7 +47,7 @@ func TestDensityWithinUncertainty(t *testing.T) {
 		_, u := f.Uncertainty(293.15, atm)
 		d := math.Abs(got.Density/want - 1)
 		t.Logf("%s: %.1f kg/m³, want %g, deviation %.2f %%, stated half-width %.2f %%", name, got.Density, want, 100*d, 100*u*math.Sqrt(3))
-		if err != nil || d > u*math.Sqrt(3) {
+		if err != nil || !(d <= u*math.Sqrt(3)) {
 			t.Errorf("%s: %+v, %v; want %g", name, got, err, want)
 		}
 	}
@@ -70,7 +70,7 @@ func TestUncertainty(t *testing.T) {
 		{Composition{Water: 0.3, Carbohydrate: 0.7}, 40, 0.5227*0.0108 + 0.4773*0.06, 0.4069*0.0011 + 0.5931*0.08, 1e-5},
 	} {
 		cp, density := mustNew(t, tt.c).Uncertainty(zeroC+tt.celsius, atm)
-		if r := math.Sqrt(3); math.Abs(cp*r-tt.cp) > tt.slop || math.Abs(density*r-tt.rho) > tt.slop {
+		if r := math.Sqrt(3); !(math.Abs(cp*r-tt.cp) <= tt.slop) || !(math.Abs(density*r-tt.rho) <= tt.slop) {
 			t.Errorf("%v at %g °C: half-widths %.5f, %.5f; want %.5f, %.5f", tt.c, tt.celsius, cp*r, density*r, tt.cp, tt.rho)
 		}
 	}

@@ -53,10 +53,10 @@ func TestFlueFigures(t *testing.T) {
 		{"light fuel oil", fuelOil, 14.6, 0.1, 15.4, practice},
 	} {
 		f := mustBurn(t, tt.fuel, Combustion{})
-		if math.Abs(f.StoichiometricAir-tt.air) > tt.tolerance || f.StoichiometricAir != f.DryAir {
+		if !(math.Abs(f.StoichiometricAir-tt.air) <= tt.tolerance) || f.StoichiometricAir != f.DryAir {
 			t.Errorf("%s: %.3f kg/kg of air, want %g (%s)", tt.name, f.StoichiometricAir, tt.air, tt.source)
 		}
-		if co2 := 100 * f.Dry()["CO2"]; tt.co2 > 0 && math.Abs(co2-tt.co2) > 0.1 {
+		if co2 := 100 * f.Dry()["CO2"]; tt.co2 > 0 && !(math.Abs(co2-tt.co2) <= 0.1) {
 			t.Errorf("%s: CO2 of %.2f %% dry, want %g (%s)", tt.name, co2, tt.co2, tt.source)
 		}
 	}
@@ -85,7 +85,7 @@ func TestFlueVolumes(t *testing.T) {
 		{"C", carbon, 1.53}, {"H", hydrogen, 3.64 / 1.00794}, {"H wet", wetHydrogen, 5.57 / 1.00794}, {"S", sulfur, 0.57},
 		{"N", (withN - 0.9*carbon) / 0.1, 0.14}, {"O", (withO - 0.9*carbon) / 0.1, -0.46},
 	} {
-		if math.Abs(tt.got-tt.want) > 0.01 {
+		if !(math.Abs(tt.got-tt.want) <= 0.01) {
 			t.Errorf("%s: %.4f scf/lb per percent, want %g", tt.name, tt.got, tt.want)
 		}
 	}
@@ -114,21 +114,21 @@ func TestFlueBalance(t *testing.T) {
 			O: e.O/massO + water + 2*air*(0.209476+0.000319), N: e.N/massN + 2*air*0.78084, S: e.S / massS,
 		}
 		for _, d := range []float64{out.C/in.C - 1, out.H/in.H - 1, out.O/in.O - 1, out.N/in.N - 1, out.S/in.S - 1} {
-			if math.Abs(d) > 1e-12 {
+			if !(math.Abs(d) <= 1e-12) {
 				t.Fatalf("%+v, %+v: atoms in %+v, out %+v", e, c, in, out)
 			}
 		}
-		if m := 1 - e.Ash + f.DryAir*(1+c.HumidityRatio); math.Abs(f.PerFuel/m-1) > 1e-7 || f.DryAir < f.StoichiometricAir {
+		if m := 1 - e.Ash + f.DryAir*(1+c.HumidityRatio); !(math.Abs(f.PerFuel/m-1) <= 1e-7) || !(f.DryAir >= f.StoichiometricAir) {
 			t.Fatalf("%+v, %+v: %.10g kg out, %.10g kg in", e, c, f.PerFuel, m)
 		}
-		if x := f.Fractions["O2"]; x > 1e-3 {
+		if x := f.Fractions["O2"]; !(x <= 1e-3) {
 			wet := mustBurn(t, Fuel{Mass: e}, Combustion{WetO2: x, HumidityRatio: c.HumidityRatio})
-			if math.Abs(wet.ExcessAir-c.ExcessAir) > 1e-11 {
+			if !(math.Abs(wet.ExcessAir-c.ExcessAir) <= 1e-11) {
 				t.Fatalf("%+v: excess air %.15g, by the oxygen of the wet gas %.15g", e, c.ExcessAir, wet.ExcessAir)
 			}
 		}
 		back := mustBurn(t, Fuel{Mass: e}, Combustion{DryO2: f.Dry()["O2"], HumidityRatio: c.HumidityRatio})
-		if f.Dry()["O2"] > 1e-3 && math.Abs(back.ExcessAir-c.ExcessAir) > 1e-11 {
+		if f.Dry()["O2"] > 1e-3 && !(math.Abs(back.ExcessAir-c.ExcessAir) <= 1e-11) {
 			t.Fatalf("%+v: excess air %.15g, by the oxygen left %.15g", e, c.ExcessAir, back.ExcessAir)
 		}
 	}
@@ -139,17 +139,17 @@ func TestFlueBalance(t *testing.T) {
 // times the ratio of dry flue gas to air, 0.895.
 func TestFlueOfMethane(t *testing.T) {
 	f := mustBurn(t, gasFuel("methane"), Combustion{})
-	if lo, _ := f.Fluid.Span(101325); math.Abs(lo-273.15-59) > 0.5 {
+	if lo, _ := f.Fluid.Span(101325); !(math.Abs(lo-273.15-59) <= 0.5) {
 		t.Errorf("dew point %.2f °C, want 59 °C", lo-273.15)
 	}
 	f = mustBurn(t, gasFuel("methane"), Combustion{DryO2: 0.03})
-	if want := 0.03 / (0.209476 - 0.03) * 0.895; math.Abs(f.ExcessAir-want) > 0.001 || math.Abs(f.Dry()["O2"]-0.03) > 1e-15 {
+	if want := 0.03 / (0.209476 - 0.03) * 0.895; !(math.Abs(f.ExcessAir-want) <= 0.001) || !(math.Abs(f.Dry()["O2"]-0.03) <= 1e-15) {
 		t.Errorf("excess air %.4f, want %.4f; O2 %g", f.ExcessAir, want, f.Dry()["O2"])
 	}
 	if !strings.Contains(f.Fluid.Source(), "complete combustion") {
 		t.Errorf("source %q", f.Fluid.Source())
 	}
-	if f.Fractions["CO"] != 0 || math.Abs(f.PerFuel-1-f.DryAir) > 1e-6 {
+	if f.Fractions["CO"] != 0 || !(math.Abs(f.PerFuel-1-f.DryAir) <= 1e-6) {
 		t.Errorf("%+v", f)
 	}
 }
@@ -157,10 +157,10 @@ func TestFlueOfMethane(t *testing.T) {
 // What passes the flame unburnt stays, and what is burnt already does so too.
 func TestFlueOfLeanGas(t *testing.T) {
 	f := mustBurn(t, Fuel{Gas: map[string]float64{"CO": 0.25, "H2": 0.05, "CO2": 0.1, "N2": 0.57, "He": 0.02, "HCl": 0.01}}, Combustion{ExcessAir: 0.1})
-	if d := f.Fractions["He"] / f.Fractions["HCl"]; math.Abs(d-2) > 1e-14 {
+	if d := f.Fractions["He"] / f.Fractions["HCl"]; !(math.Abs(d-2) <= 1e-14) {
 		t.Errorf("He to HCl %g, want 2", d)
 	}
-	if d := f.Fractions["H2O"] / f.Fractions["HCl"]; math.Abs(d-5) > 1e-13 {
+	if d := f.Fractions["H2O"] / f.Fractions["HCl"]; !(math.Abs(d-5) <= 1e-13) {
 		t.Errorf("H2O to HCl %g, want 5", d)
 	}
 }

@@ -31,7 +31,7 @@ func TestAttraction(t *testing.T) {
 			}
 			y1, dy1, ddy1 := f.attraction(p.end)
 			y2, dy2, ddy2 := f.attraction(p.end * (1 + 1e-12))
-			if math.Abs(y2/y1-1) > 1e-10 || math.Abs(dy2/dy1-1) > 1e-10 || math.Abs(ddy2-ddy1) > 1e-10*dy1*dy1/y1 {
+			if !(math.Abs(y2/y1-1) <= 1e-10) || !(math.Abs(dy2/dy1-1) <= 1e-10) || !(math.Abs(ddy2-ddy1) <= 1e-10*dy1*dy1/y1) {
 				t.Errorf("%s: √a %g, %g, %g and %g, %g, %g on the two sides of %g K", name, y1, dy1, ddy1, y2, dy2, ddy2, p.end*p.end)
 			}
 		}
@@ -63,7 +63,7 @@ func TestBeyondBoyle(t *testing.T) {
 		for B := -1.0; B < 0; other++ {
 			B, _ = c.virial(other)
 		}
-		if other < maxT && math.Abs(boyle/other-1) > 0.15 {
+		if other < maxT && !(math.Abs(boyle/other-1) <= 0.15) {
 			t.Errorf("%s: Boyle temperature %g K, by corresponding states %g K", s.formula, boyle, other)
 		}
 	}

@@ -25,12 +25,12 @@ func TestBeyondIsContinuous(t *testing.T) {
 				t.Fatal(err)
 			}
 			scale := f.top * below.Cp
-			if math.Abs(above.Enthalpy-below.Enthalpy) > 1e-11*scale || math.Abs(above.InternalEnergy-below.InternalEnergy) > 1e-11*scale ||
-				math.Abs(above.Density/below.Density-1) > 1e-11 || math.Abs((above.Cp-above.Cv)/(below.Cp-below.Cv)-1) > 1e-8 {
+			if !(math.Abs(above.Enthalpy-below.Enthalpy) <= 1e-11*scale) || !(math.Abs(above.InternalEnergy-below.InternalEnergy) <= 1e-11*scale) ||
+				!(math.Abs(above.Density/below.Density-1) <= 1e-11) || !(math.Abs((above.Cp-above.Cv)/(below.Cp-below.Cv)-1) <= 1e-8) {
 				t.Errorf("%s at %g Pa: %+v below, %+v above", s, p, below, above)
 			}
 			uCp, _ := f.Uncertainty(f.top*(1+1e-12), p)
-			if d := math.Abs(above.Cp/below.Cp - 1); d > 2*uCp {
+			if d := math.Abs(above.Cp/below.Cp - 1); !(d <= 2*uCp) {
 				t.Errorf("%s at %g Pa: cp steps by %.2f %%, twice the uncertainty is %.2f %%", s, p, 100*d, 200*uCp)
 			}
 		}
@@ -57,13 +57,13 @@ func TestBeyondAgainstPengRobinson(t *testing.T) {
 				uCp, uDensity := f.Uncertainty(T, p)
 				vCp, vDensity := other.Uncertainty(T, p)
 				dCp, dDensity := math.Abs(got.Cp/want.Cp-1), math.Abs(got.Density/want.Density-1)
-				if dCp > 2*math.Hypot(uCp, vCp) || dDensity > 2*math.Hypot(uDensity, vDensity) {
+				if !(dCp <= 2*math.Hypot(uCp, vCp)) || !(dDensity <= 2*math.Hypot(uDensity, vDensity)) {
 					t.Errorf("%s %g K, %g Pa: %.3f %% in cp and %.3f %% in density from Peng and Robinson", s, T, p, 100*dCp, 100*dDensity)
 				}
 				if T > f.top+200 {
 					worstCp, worstDensity = max(worstCp, dCp), max(worstDensity, dDensity)
 				}
-				if slope, capacities := lawsOf(t, f, T, p); slope > 1e-6 || capacities > 1e-5 {
+				if slope, capacities := lawsOf(t, f, T, p); !(slope <= 1e-6) || !(capacities <= 1e-5) {
 					t.Errorf("%s %g K, %g Pa: dh/dp misses its law by %.2g of v, cp − cv by %.2g of it", s, T, p, slope, capacities)
 				}
 			}
@@ -73,7 +73,7 @@ func TestBeyondAgainstPengRobinson(t *testing.T) {
 		if s == "NH3" {
 			limit = 0.009
 		}
-		if worstCp > limit || worstDensity > 0.011 {
+		if !(worstCp <= limit) || !(worstDensity <= 0.011) {
 			t.Errorf("%s: cp within %.2f %%, density within %.2f %%", s, 100*worstCp, 100*worstDensity)
 		}
 	}

@@ -20,7 +20,7 @@ func TestBestIsReference(t *testing.T) {
 			continue
 		}
 		for column, v := range map[string]float64{"rho_kg_per_m3": got.Density, "cp_J_per_kgK": got.Cp, "cv_J_per_kgK": got.Cv} {
-			if want := r.Number(column); math.Abs(v/want-1) > 5e-6 {
+			if want := r.Number(column); !(math.Abs(v/want-1) <= 5e-6) {
 				t.Errorf("%s %g K, %g Pa: %s = %.7g, want %.7g (%s)", s, T, p, column, v, want, r.Text("eos"))
 			}
 		}
@@ -54,7 +54,7 @@ func TestOneZero(t *testing.T) {
 			if err != nil && name == "NO2" {
 				continue // pairs
 			}
-			if err != nil || math.Abs(got.Enthalpy) > 2 {
+			if err != nil || !(math.Abs(got.Enthalpy) <= 2) {
 				t.Errorf("%s, %v: h = %.2f J/kg, want 0, %v", name, model, got.Enthalpy, err)
 			}
 		}
@@ -120,10 +120,10 @@ func TestSimplerModelsAgainstReference(t *testing.T) {
 			if n < 50 {
 				t.Errorf("%v %s: %d states compared, want 50 or more", model, s, n)
 			}
-			if all.cp > allowed.cp || all.density > allowed.density {
+			if !(all.cp <= allowed.cp) || !(all.density <= allowed.density) {
 				t.Errorf("%v %s: cp within %.2f %%, density within %.2f %%", model, s, 100*all.cp, 100*all.density)
 			}
-			if hot.cp > 0.046 || hot.density > 0.041 {
+			if !(hot.cp <= 0.046) || !(hot.density <= 0.041) {
 				t.Errorf("%v %s above 1.3 Tc: cp within %.2f %%, density within %.2f %%", model, s, 100*hot.cp, 100*hot.density)
 			}
 			t.Logf("above 1.3 Tc: %.2f %%, %.2f %%", 100*hot.cp, 100*hot.density)
@@ -168,7 +168,7 @@ func TestDuties(t *testing.T) {
 	} {
 		for model, tolerance := range map[Model]float64{Best: 1e-7, PengRobinson: tt.simpler} {
 			got, err := thermo.StreamHeat(pure(t, tt.gas, model), tt.m, tt.T1, tt.p, tt.T2, tt.p)
-			if err != nil || math.Abs(got/tt.want-1) > tolerance {
+			if err != nil || !(math.Abs(got/tt.want-1) <= tolerance) {
 				t.Errorf("%s, %v: %.8g W, want %.8g within %g, %v (%s)", tt.gas, model, got, tt.want, tolerance, err, tt.source)
 			}
 		}

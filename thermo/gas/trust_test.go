@@ -24,7 +24,7 @@ func within(t *testing.T, f thermo.Fluid, T, p float64, got, want thermo.Propert
 	t.Helper()
 	uCp, uDensity := f.Uncertainty(T, p)
 	dCp, dDensity := math.Abs(got.Cp/want.Cp-1), math.Abs(got.Density/want.Density-1)
-	if dCp > 2*uCp || dDensity > 2*uDensity {
+	if !(dCp <= 2*uCp) || !(dDensity <= 2*uDensity) {
 		t.Errorf("%s %g K, %g Pa: off by %.3f %% in cp and %.3f %% in density, twice the uncertainty is %.3f %% and %.3f %% (%s)",
 			f.Name(), T, p, 100*dCp, 100*dDensity, 200*uCp, 200*uDensity, source)
 	}
@@ -55,10 +55,10 @@ func TestTrust(t *testing.T) {
 		if f.Bounds().MaxP == leastMaxP { // too far from ideal for the usual limit
 			cpLimit, rhoLimit = 0.034, 0.016
 		}
-		if d := got.Cp/r.Number("cp_J_per_kgK") - 1; err != nil || math.Abs(d) > cpLimit {
+		if d := got.Cp/r.Number("cp_J_per_kgK") - 1; err != nil || !(math.Abs(d) <= cpLimit) {
 			t.Errorf("%s %g K, %g Pa: cp is off by %.2f %%, %v (%s)", s, T, p, 100*d, err, r.Text("eos"))
 		}
-		if d := got.Density/r.Number("rho_kg_per_m3") - 1; math.Abs(d) > rhoLimit {
+		if d := got.Density/r.Number("rho_kg_per_m3") - 1; !(math.Abs(d) <= rhoLimit) {
 			t.Errorf("%s %g K, %g Pa: density is off by %.2f %% (%s)", s, T, p, 100*d, r.Text("eos"))
 		}
 		within(t, f, T, p, got, figures(r), r.Text("eos"))
@@ -77,10 +77,10 @@ func TestTrustOfWaterVapour(t *testing.T) {
 		t.Fatal(err)
 	}
 	k := trusts["H2O"]
-	if d := 1 - ideal.Cp/real.Cp; math.Abs(d-k.cp*p) > 0.001 {
+	if d := 1 - ideal.Cp/real.Cp; !(math.Abs(d-k.cp*p) <= 0.001) {
 		t.Errorf("cp is %.4f low, table says %.4f", d, k.cp*p)
 	}
-	if d := 1 - ideal.Density/real.Density; math.Abs(d-k.density*p) > 0.001 {
+	if d := 1 - ideal.Density/real.Density; !(math.Abs(d-k.density*p) <= 0.001) {
 		t.Errorf("density is %.4f low, table says %.4f", d, k.density*p)
 	}
 }
@@ -98,12 +98,12 @@ func TestHotWaterVapour(t *testing.T) {
 		}
 		u, _ := pure(t, "H2O", Ideal).Uncertainty(T, p)
 		d := got.Cp/want.Cp - 1
-		if worst = max(worst, math.Abs(d)); math.Abs(d) > math.Sqrt(3)*u {
+		if worst = max(worst, math.Abs(d)); !(math.Abs(d) <= math.Sqrt(3)*u) {
 			t.Errorf("%g K: cp is off by %.3f %%, uncertainty %.3f %%", T, 100*d, 100*u)
 		}
 	}
 	t.Logf("worst %.2f %%", 100*worst)
-	if worst < 0.005 {
+	if !(worst >= 0.005) {
 		t.Errorf("worst deviation %g, expected about 1 %%", worst)
 	}
 }
@@ -139,10 +139,10 @@ func TestTrustByCorrespondingStates(t *testing.T) {
 		B, second := c.virial(T)
 		cp0, _ := s.low.at(T)
 		tolerance := max(near[s.formula], 0.02)
-		if d := -T * second / (thermo.R * cp0); math.Abs(k.cp/d-1) > tolerance {
+		if d := -T * second / (thermo.R * cp0); !(math.Abs(k.cp/d-1) <= tolerance) {
 			t.Errorf("%s: cp deviates by %g per Pa, corresponding states give %g", s.formula, k.cp, d)
 		}
-		if d := math.Abs(B) / (thermo.R * T); math.Abs(k.density-d) > tolerance*d+0.0005e-6 {
+		if d := math.Abs(B) / (thermo.R * T); !(math.Abs(k.density-d) <= tolerance*d+0.0005e-6) {
 			t.Errorf("%s: density deviates by %g per Pa, corresponding states give %g", s.formula, k.density, d)
 		}
 	}

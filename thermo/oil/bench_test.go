@@ -36,7 +36,7 @@ func TestNaiveAgrees(t *testing.T) {
 	for T := 260.0; T < 420; T += 7 {
 		s, err := f.At(T, thermo.Atmosphere)
 		h, cp, rho := naive(850, 11.8, 613.9723, T)
-		if err != nil || math.Abs(s.Enthalpy/h-1) > 1e-11 || math.Abs(s.Cp/cp-1) > 1e-13 || math.Abs(s.Density/rho-1) > 1e-13 {
+		if err != nil || !(math.Abs(s.Enthalpy/h-1) <= 1e-11) || !(math.Abs(s.Cp/cp-1) <= 1e-13) || !(math.Abs(s.Density/rho-1) <= 1e-13) {
 			t.Errorf("%g K: %+v, %v; naive h %g, cp %g, density %g", T, s, err, h, cp, rho)
 		}
 	}

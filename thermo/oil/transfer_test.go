@@ -28,14 +28,14 @@ func TestTransferRows(t *testing.T) {
 		f := fluidtest.Must(HeatTransfer(r.Text("liquid")))(t)
 		T := r.Number("T_K")
 		s, err := f.At(T, 2e6)
-		if err != nil || math.Abs(s.Cp/r.Number("cp_J_per_kgK")-1) > 1e-14 || math.Abs(s.Density/r.Number("rho_kg_per_m3")-1) > 1e-14 {
+		if err != nil || !(math.Abs(s.Cp/r.Number("cp_J_per_kgK")-1) <= 1e-14) || !(math.Abs(s.Density/r.Number("rho_kg_per_m3")-1) <= 1e-14) {
 			t.Errorf("%s at %g K: %+v, %v; want cp %s, density %s", f.Name(), T, s, err, r.Text("cp_J_per_kgK"), r.Text("rho_kg_per_m3"))
 		}
 		if !r.Has("psat_Pa") {
 			continue
 		}
 		pressures++
-		if _, hi := f.Span(r.Number("psat_Pa")); math.Abs(hi/T-1) > 1e-12 {
+		if _, hi := f.Span(r.Number("psat_Pa")); !(math.Abs(hi/T-1) <= 1e-12) {
 			t.Errorf("%s at %s Pa boils at %.12g K, want %g", f.Name(), r.Text("psat_Pa"), hi, T)
 		}
 	}
@@ -73,11 +73,11 @@ func TestInterpolation(t *testing.T) {
 		if l.gravity > 0 { // mineral oils
 			limit = 0.0037
 		}
-		if cubic > limit {
+		if !(cubic <= limit) {
 			t.Errorf("%s: cubics miss %.3g of cp, lines %.3g, want %g", l.name, cubic, line, limit)
 		}
 	}
-	if worstLine > 0.00295 {
+	if !(worstLine <= 0.00295) {
 		t.Errorf("straight lines miss %.3g of cp, want 0.0029", worstLine)
 	}
 }
@@ -94,7 +94,7 @@ func TestTransferHeat(t *testing.T) {
 	} {
 		q, err := thermo.StreamHeat(fluidtest.Must(HeatTransfer(tt.liquid))(t), tt.mass, tt.T1, 1e6, tt.T2, 1e6)
 		t.Logf("%s: %.7g W, by straight lines %.7g", tt.liquid, q, tt.heat)
-		if err != nil || math.Abs(q/tt.heat-1) > 2e-4 {
+		if err != nil || !(math.Abs(q/tt.heat-1) <= 2e-4) {
 			t.Errorf("%s: %.9g W, %v; want %g", tt.liquid, q, err, tt.heat)
 		}
 	}
@@ -114,19 +114,19 @@ func TestMineralOilsAgainstCragoe(t *testing.T) {
 			}
 			d := math.Abs(c.at(T)/s.Cp - 1)
 			worst = max(worst, d)
-			if u, _ := f.Uncertainty(T, atm); math.Abs(u*math.Sqrt(3)-max(d, mineralCp)) > 1e-12 {
+			if u, _ := f.Uncertainty(T, atm); !(math.Abs(u*math.Sqrt(3)-max(d, mineralCp)) <= 1e-12) {
 				t.Errorf("%s at %g K: half-width %g, deviation %g", name, T, u*math.Sqrt(3), d)
 			}
 		}
 		t.Logf("%s: Cragoe within %.2f %%", name, 100*worst)
-		if worst > limit {
+		if !(worst <= limit) {
 			t.Errorf("%s: Cragoe deviates by %.3g, want %g", name, worst, limit)
 		}
 		// The gravity is that of the table at 60 °F.
 		s, err := f.At(sixtyF, 1e6)
 		want := s.Density / waterAt60F
 		for _, l := range transferLiquids {
-			if l.name == name && (err != nil || math.Abs(l.gravity-want) > 6e-4) {
+			if l.name == name && (err != nil || !(math.Abs(l.gravity-want) <= 6e-4)) {
 				t.Errorf("%s: specific gravity %g, by its table %.4f, %v", name, l.gravity, want, err)
 			}
 		}
@@ -152,7 +152,7 @@ func TestTransferNames(t *testing.T) {
 		}
 	}
 	f := fluidtest.Must(HeatTransfer("diphenyl oxide/biphenyl eutectic"))(t)
-	if lo, hi := f.Span(atm); lo != 285.15 || math.Abs(hi-530.15) > 1 {
+	if lo, hi := f.Span(atm); lo != 285.15 || !(math.Abs(hi-530.15) <= 1) {
 		t.Errorf("the eutectic spans %g to %g K at 1 atm, want 285.15 to 530", lo, hi)
 	}
 	_, err = f.At(600, 2e5)
@@ -168,7 +168,7 @@ func TestTransferUncertainty(t *testing.T) {
 	} {
 		f := fluidtest.Must(HeatTransfer(name))(t)
 		cp, density := f.Uncertainty(350, atm)
-		if r := math.Sqrt(3); math.Abs(cp*r-want[0]) > 1e-12 || math.Abs(density*r-want[1]) > 1e-12 {
+		if r := math.Sqrt(3); !(math.Abs(cp*r-want[0]) <= 1e-12) || !(math.Abs(density*r-want[1]) <= 1e-12) {
 			t.Errorf("%s: half-widths %g, %g; want %g", name, cp*r, density*r, want)
 		}
 		if more, _ := f.Uncertainty(350, 2e6); !(more > cp) {

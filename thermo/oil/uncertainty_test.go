@@ -25,7 +25,7 @@ func TestCpUncertainty(t *testing.T) {
 	f := fluidtest.Must(Petroleum(950, 10, "fuel oil"))(t)
 	sg := 0.9505 // at 60 °F
 	c, k := cragoe(sg), keslerLee(sg, 10)
-	if got, want := u(f, 300), c.at(300)/k.at(300)-1; math.Abs(got-want) > 2e-4 || want < 0.1 {
+	if got, want := u(f, 300), c.at(300)/k.at(300)-1; !(math.Abs(got-want) <= 2e-4) || !(want >= 0.1) {
 		t.Errorf("aromatic: half-width %.5g, want that of Cragoe %.5g", got, want)
 	}
 	if known, unknown := u(fluidtest.Must(Petroleum(850, 11.8, ""))(t), 300), u(fluidtest.Must(Petroleum(850, 0, ""))(t), 300); !(unknown > known) {
@@ -48,7 +48,7 @@ func TestSpreadIsCovered(t *testing.T) {
 		}
 		u, _ := f.Uncertainty(T, atm)
 		for _, column := range []string{"cragoe_J_per_kgK", "fallon_watson_J_per_kgK", "api_7D22_J_per_kgK"} {
-			if d := math.Abs(r.Number(column)/s.Cp - 1); d > u*math.Sqrt(3)+3e-6 {
+			if d := math.Abs(r.Number(column)/s.Cp - 1); !(d <= u*math.Sqrt(3)+3e-6) {
 				t.Errorf("SG %g at %g K: %s deviates by %.3g, half-width %.3g", sg, T, column, d, u*math.Sqrt(3))
 			}
 		}
@@ -70,7 +70,7 @@ func TestDensityUncertainty(t *testing.T) {
 		{"fuel oil", atm + 2e6, math.Hypot(0.00137, 0.001992/math.Sqrt(3))},
 	} {
 		_, u := fluidtest.Must(Petroleum(900, 0, tt.group))(t).Uncertainty(373.15, tt.p)
-		if math.Abs(u-tt.want) > 2e-5 {
+		if !(math.Abs(u-tt.want) <= 2e-5) {
 			t.Errorf("%q at %g Pa: %g, want %g", tt.group, tt.p, u, tt.want)
 		}
 	}
@@ -94,7 +94,7 @@ func TestSpreadOfCorrelations(t *testing.T) {
 		}
 	}
 	t.Logf("half-widths up to %.1f %%", 100*worst)
-	if math.Abs(worst-0.175) > 0.003 {
+	if !(math.Abs(worst-0.175) <= 0.003) {
 		t.Errorf("half-widths up to %.4f, want the 17.5 %% that the package comment tells", worst)
 	}
 }
@@ -110,7 +110,7 @@ func TestUnknownWatson(t *testing.T) {
 		t.Fatal(err)
 	}
 	u, _ := fluidtest.Must(Petroleum(rho15, 0, "crude oil"))(t).Uncertainty(293.15, atm)
-	if got := u * math.Sqrt(3); math.Abs(got-0.0766) > 2e-4 {
+	if got := u * math.Sqrt(3); !(math.Abs(got-0.0766) <= 2e-4) {
 		t.Errorf("SG 0.85: half-width %.5f, want 0.0766", got)
 	}
 	// Hot and heavy, paraffinic oil is the farthest, API 7D2.2 at 12.7.
@@ -121,7 +121,7 @@ func TestUnknownWatson(t *testing.T) {
 	heavy := fluidtest.Must(Petroleum(rho15, 0, "fuel oil"))(t)
 	u, _ = heavy.Uncertainty(423.15, atm)
 	c, farthest := cragoe(0.95), api7D22(0.95, 12.7)
-	if got, want := u*math.Sqrt(3), farthest.at(423.15)/c.at(423.15)-1; math.Abs(got-want) > 1e-5 {
+	if got, want := u*math.Sqrt(3), farthest.at(423.15)/c.at(423.15)-1; !(math.Abs(got-want) <= 1e-5) {
 		t.Errorf("SG 0.95 at 150 °C: half-width %.5f, want %.5f", got, want)
 	}
 	// Under pressure cp falls: by 2 MPa times the mean slope of v − T dv/dT.
@@ -143,7 +143,7 @@ func TestUnknownWatsonOfHeavyOil(t *testing.T) {
 	usual, aromatic, paraffinic := keslerLee(0.99, 11.5), keslerLee(0.99, 10), keslerLee(0.99, 12.7)
 	s, err := f.At(293.15, atm)
 	u, _ := f.Uncertainty(293.15, atm)
-	if err != nil || math.Abs(s.Cp/usual.at(293.15)-1) > 1e-9 || !strings.Contains(f.Source(), "at a Watson factor of 11.5 that is usual in fuel oil") {
+	if err != nil || !(math.Abs(s.Cp/usual.at(293.15)-1) <= 1e-9) || !strings.Contains(f.Source(), "at a Watson factor of 11.5 that is usual in fuel oil") {
 		t.Errorf("%s: %+v, %v; want cp %g", f.Source(), s, err, usual.at(293.15))
 	}
 	for _, c := range []quadratic{aromatic, paraffinic, api7D22(0.99, 10), api7D22(0.99, 12.7), fallonWatson(0.99, 10), fallonWatson(0.99, 12.7)} {

@@ -25,7 +25,7 @@ func TestVolumeCorrection(t *testing.T) {
 			t.Error(err)
 			continue
 		}
-		if a := g.alpha(rho15); math.Abs(a-r.Number("alpha15_per_K")) > 5.1e-10 {
+		if a := g.alpha(rho15); !(math.Abs(a-r.Number("alpha15_per_K")) <= 5.1e-10) {
 			t.Errorf("%s %g: alpha %.6g, want %s", g.name, rho15, a, r.Text("alpha15_per_K"))
 		}
 		s, err := fluidtest.Must(Petroleum(rho15, 12, r.Text("group")))(t).At(T, maxPressure)
@@ -35,7 +35,7 @@ func TestVolumeCorrection(t *testing.T) {
 		}
 		d := math.Abs(s.Density/rho15 - r.Number("VCF"))
 		worst = max(worst, d)
-		if d > tolerance+1e-12 || math.Abs(s.Density-r.Number("rho_kg_per_m3")) > 5.1e-5 {
+		if !(d <= tolerance+1e-12) || !(math.Abs(s.Density-r.Number("rho_kg_per_m3")) <= 5.1e-5) {
 			t.Errorf("%s %g at %g K: factor %.8g, density %.9g; want %s, %s", g.name, rho15, T, s.Density/rho15, s.Density, r.Text("VCF"), r.Text("rho_kg_per_m3"))
 		}
 	}
@@ -74,7 +74,7 @@ func TestSixtyFahrenheit(t *testing.T) {
 		if g.name == "transition" {
 			limit = 5e-4
 		}
-		if worst > limit {
+		if !(worst <= limit) {
 			t.Errorf("%s: 15 °C and 60 °F differ by %.2g, want %g", g.name, worst, limit)
 		}
 	}
@@ -89,14 +89,14 @@ func TestAPI(t *testing.T) {
 				continue // not of this group
 			}
 			back, err := APIOfDensity(rho15, group)
-			if err != nil || math.Abs(back-api) > 1e-9 {
+			if err != nil || !(math.Abs(back-api) <= 1e-9) {
 				t.Errorf("%g API of %q is %g kg/m³, which is %.12g, %v", api, group, rho15, back, err)
 			}
 		}
 	}
 	for group, want := range map[string]float64{"": 1, "crude oil": 1, "fuel oil": 1} {
 		rho15, err := DensityOfAPI(10, group)
-		if err != nil || math.Abs(rho15/waterAt60F/want-1) > 5e-4 || rho15 <= waterAt60F {
+		if err != nil || !(math.Abs(rho15/waterAt60F/want-1) <= 5e-4) || !(rho15 > waterAt60F) {
 			t.Errorf("10 API of %q: %g kg/m³ at 15 °C, %v; want a little above %g", group, rho15, err, waterAt60F)
 		}
 	}
@@ -197,7 +197,7 @@ func TestGroupNames(t *testing.T) {
 // · 2.366864 = 0.644216, and e to that is 1.9045; at 85 °C 3.6907.
 func TestCompressibility(t *testing.T) {
 	for _, tt := range []struct{ rho, celsius, want float64 }{{650, 20, 1.9045e-9}, {650, 85, 3.6907e-9}, {850, 20, 0.74492e-9}} {
-		if got := compressibility(tt.rho, tt.celsius+zeroC); math.Abs(got/tt.want-1) > 2e-5 {
+		if got := compressibility(tt.rho, tt.celsius+zeroC); !(math.Abs(got/tt.want-1) <= 2e-5) {
 			t.Errorf("%g kg/m³ at %g °C: %.5g 1/Pa, want %.5g", tt.rho, tt.celsius, got, tt.want)
 		}
 	}

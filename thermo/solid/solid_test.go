@@ -67,7 +67,7 @@ func TestTable(t *testing.T) {
 			}
 			continue
 		}
-		if err != nil || math.Abs(got.Cp-r.cp) > printedCp+1e-9 || got.Density != r.density {
+		if err != nil || !(math.Abs(got.Cp-r.cp) <= printedCp+1e-9) || got.Density != r.density {
 			t.Errorf("%s at %g K: %+v, %v; want cp %g, density %g", r.solid, r.T, got, err, r.cp, r.density)
 			continue
 		}
@@ -77,7 +77,7 @@ func TestTable(t *testing.T) {
 		h := enthalpyAbove(t, f, r)
 		d := math.Abs(h - r.h)
 		worst[r.solid] = max(worst[r.solid], d/max(math.Abs(r.h), 1))
-		if d > printedH+formula*math.Abs(r.h) {
+		if !(d <= printedH+formula*math.Abs(r.h)) {
 			t.Errorf("%s at %g K: h = %.8g J/kg, want %.8g", r.solid, r.T, h, r.h)
 		}
 	}
@@ -122,7 +122,10 @@ func TestCubicsAgainstEnthalpies(t *testing.T) {
 			}
 		}
 		t.Logf("%s: cubics within %.2g of the enthalpy, trapezoids above 298.15 K within %.2g", s.name, cubics, trapezoids)
-		if limit := map[string]float64{"alumina": 0.0034}[s.name]; cubics > max(limit, 0.0008) {
+		if !(trapezoids <= 0.009 && trapezoids > 0) {
+			t.Errorf("%s: trapezoids off by %.2g", s.name, trapezoids)
+		}
+		if limit := map[string]float64{"alumina": 0.0034}[s.name]; !(cubics <= max(limit, 0.0008)) {
 			t.Errorf("%s: cubics off by %.2g", s.name, cubics)
 		}
 	}
@@ -140,7 +143,7 @@ func TestWorkedHeat(t *testing.T) {
 		{"copper", 0.25, 298.15, 400, 9988.825},
 	} {
 		q, err := thermo.StreamHeat(mustNew(t, tt.solid), tt.mass, tt.T1, atm, tt.T2, atm)
-		if err != nil || math.Abs(q/tt.heat-1) > 1e-6 {
+		if err != nil || !(math.Abs(q/tt.heat-1) <= 1e-6) {
 			t.Errorf("%s: %.9g W, %v; want %.9g", tt.solid, q, err, tt.heat)
 		}
 	}
@@ -162,7 +165,7 @@ func TestUncertainty(t *testing.T) {
 		{"oak wood", 320, 0.1 + 20*0.004, 0.1},
 	} {
 		cp, density := mustNew(t, tt.solid).Uncertainty(tt.T, atm)
-		if root := math.Sqrt(3); math.Abs(cp-tt.cp/root) > 1e-12 || math.Abs(density-tt.density/root) > 1e-12 {
+		if root := math.Sqrt(3); !(math.Abs(cp-tt.cp/root) <= 1e-12) || !(math.Abs(density-tt.density/root) <= 1e-12) {
 			t.Errorf("%s at %g K: %g, %g; want half-widths %g, %g over √3", tt.solid, tt.T, cp, density, tt.cp, tt.density)
 		}
 	}
@@ -225,7 +228,7 @@ func TestRanges(t *testing.T) {
 			t.Errorf("%s: from %g to %g K, want 0 to %g", name, lo, hi, want.melting)
 		}
 		cp, density := f.Uncertainty(at, atm)
-		if r := math.Sqrt(3); math.Abs(cp*r-want.cp) > 1e-12 || math.Abs(density*r-want.density) > 1e-12 {
+		if r := math.Sqrt(3); !(math.Abs(cp*r-want.cp) <= 1e-12) || !(math.Abs(density*r-want.density) <= 1e-12) {
 			t.Errorf("%s: half-widths %g, %g; want %g, %g", name, cp*r, density*r, want.cp, want.density)
 		}
 	}

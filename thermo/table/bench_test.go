@@ -55,7 +55,7 @@ func TestNaiveAgrees(t *testing.T) {
 	for T := 251.0; T < 700; T += 13 {
 		p, err := f.At(T, thermo.Atmosphere)
 		h, cp, rho := naive(air(), T)
-		if err != nil || math.Abs(p.Enthalpy/h-1) > 1e-12 || math.Abs(p.Cp/cp-1) > 1e-12 || math.Abs(p.Density/rho-1) > 1e-12 {
+		if err != nil || !(math.Abs(p.Enthalpy/h-1) <= 1e-12) || !(math.Abs(p.Cp/cp-1) <= 1e-12) || !(math.Abs(p.Density/rho-1) <= 1e-12) {
 			t.Errorf("%g K: %+v, %v; naive h %g, cp %g, density %g", T, p, err, h, cp, rho)
 		}
 	}

@@ -75,7 +75,7 @@ func TestParabolaIsExact(t *testing.T) {
 		"line":     func(x float64) float64 { return 3 - 2*x },
 		"parabola": func(x float64) float64 { return 1 + x + x*x/2 },
 	} {
-		if worst := greatest(f, grid(7, true)); worst > 1e-14 {
+		if worst := greatest(f, grid(7, true)); !(worst <= 1e-14) {
 			t.Errorf("%s: off by %g", name, worst)
 		}
 	}
@@ -109,7 +109,7 @@ func TestNoOvershoot(t *testing.T) {
 			}
 			if k > 0 {
 				a, b := c[k-1].slope(x[k]-x[k-1]), c[k].slope(0)
-				if scale := max(y[k-1], y[k]) / (x[k] - x[k-1]); math.Abs(a-b) > 1e-12*(scale+math.Abs(b)) {
+				if scale := max(y[k-1], y[k]) / (x[k] - x[k-1]); !(math.Abs(a-b) <= 1e-12*(scale+math.Abs(b))) {
 					t.Fatalf("rows %v %v: slope %g before and %g after row %d", x, y, a, b, k+1)
 				}
 			}

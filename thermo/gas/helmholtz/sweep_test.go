@@ -34,12 +34,12 @@ func TestSlope(t *testing.T) {
 				if err != nil {
 					t.Fatal(err)
 				}
-				if off > worst {
-					worst, at = off, T
+				if worst = max(worst, off); worst == off {
+					at = T
 				}
 			}
 		}
-		if worst > 1e-6 {
+		if !(worst <= 1e-6) {
 			t.Errorf("%s: ∂h/∂T differs from cp by %.2g at %g K", f.Name(), worst, at)
 		}
 		t.Logf("%-22s ∂h/∂T within %.1e of cp, worst at %.1f K", f.Name(), worst, at)
@@ -162,7 +162,7 @@ func TestPhasesMeet(t *testing.T) {
 				t.Error(err)
 				continue
 			}
-			if math.Abs(a.Density/b.Density-1) > 1e-9 || math.Abs(a.Enthalpy-b.Enthalpy) > 1e-9*math.Abs(a.Enthalpy) {
+			if !(math.Abs(a.Density/b.Density-1) <= 1e-9) || !(math.Abs(a.Enthalpy-b.Enthalpy) <= 1e-9*math.Abs(a.Enthalpy)) {
 				t.Errorf("%s at %g of the critical pressure: %+v and %+v", f.name, x, a, b)
 			}
 		}
@@ -181,7 +181,7 @@ func TestUncertainty(t *testing.T) {
 		{310, 7.8e6, 0.02, 0.06, 0.0045, "next to the critical point"},
 	} {
 		cp, density := f.Uncertainty(tt.T, tt.p)
-		if cp < tt.lowCp || cp > tt.highCp || density < tt.density || density > 1.2*tt.density {
+		if !(cp >= tt.lowCp && cp <= tt.highCp && density >= tt.density && density <= 1.2*tt.density) {
 			t.Errorf("%g K, %g Pa: %g and %g, want %g to %g and %g (%s)", tt.T, tt.p, cp, density, tt.lowCp, tt.highCp, tt.density, tt.why)
 		}
 	}
