@@ -1,14 +1,14 @@
 package main
 
 import (
-	"encoding/csv"
 	"fmt"
 	"math"
 	"os"
 	"slices"
-	"strconv"
 	"strings"
 	"testing"
+
+	"heatreeve/thermo/fluidtest"
 )
 
 // spellings of units in the table of worked examples, with what their number is multiplied by.
@@ -29,12 +29,12 @@ var mixtures = map[string]string{
 
 // written is the fluid of a worked example as the command takes it. Examples worked with
 // the ideal gas are held to that model.
-func written(r map[string]string) string {
-	of := r["fluid"]
+func written(r fluidtest.Row) string {
+	of := r.Text("fluid")
 	if text, ok := mixtures[of]; ok {
 		return text
 	}
-	if of != "steam" && strings.Contains(r["source"], "ideal gas") {
+	if of != "steam" && strings.Contains(r.Text("source"), "ideal gas") {
 		return "{gas: {" + of + ": 100 %}, model: ideal}"
 	}
 	return of
@@ -45,68 +45,35 @@ func written(r map[string]string) string {
 // of thermo have are left to them.
 func TestDutyWorksTheExamples(t *testing.T) {
 	ran := 0
-	for _, r := range workedExamples(t) {
+	for _, r := range fluidtest.Rows(t, os.DirFS("../../../thermo/testdata"), "worked-examples.csv") {
 		fluid := written(r)
-		if status, _, _ := invoke("properties", fluid, "--temperature", r["T_in_K"]+" K", "--pressure", r["p_Pa"]+" Pa"); r["kind"] != "stream" || status != exitGood {
+		T, p := r.Text("T_in_K")+" K", r.Text("p_Pa")+" Pa"
+		if status, _, _ := invoke("properties", fluid, "--temperature", T, "--pressure", p); r.Text("kind") != "stream" || status != exitGood {
 			continue
 		}
-		flow := r["flow"] + " " + r["flow_unit"]
-		if s, ok := spellings[r["flow_unit"]]; ok {
-			flow = fmt.Sprintf("%g %s", s.factor*number(t, r["flow"]), s.unit)
+		flow := r.Text("flow") + " " + r.Text("flow_unit")
+		if s, ok := spellings[r.Text("flow_unit")]; ok {
+			flow = fmt.Sprintf("%g %s", s.factor*r.Number("flow"), s.unit)
 		}
-		v := askJSON[answer](t, "duty", fluid, "--flow", flow, "--from", r["T_in_K"]+" K", "--to", r["T_out_K"]+" K",
-			"--pressure", r["p_Pa"]+" Pa", "--meter-at", r["meter"])
+		v := askJSON[answer](t, "duty", fluid, "--flow", flow, "--from", T, "--to", r.Text("T_out_K")+" K", "--pressure", p, "--meter-at", r.Text("meter"))
 		ran++
 		for _, f := range [...]struct {
 			name, column string
 			got          float64
 		}{{"duty", "expected", v.Duty}, {"mass flow", "mass", v.MassFlow}} {
-			want, tolerance := number(t, r[f.column]), number(t, r["tol_rel"])
+			want, tolerance := r.Number(f.column), r.Number("tol_rel")
 			if !(math.Abs(f.got/want-1) <= tolerance) {
-				t.Errorf("%s: %s = %.9g, want %.9g within %g (%s)", r["id"], f.name, f.got, want, tolerance, r["source"])
+				t.Errorf("%s: %s = %.9g, want %.9g within %g (%s)", r.Text("id"), f.name, f.got, want, tolerance, r.Text("source"))
 			}
 		}
 		if dT := v.OutletT - v.InletT; math.Abs(v.MassFlow*v.MeanCp*dT/v.Duty-1) > 1e-12 {
-			t.Errorf("%s: mean cp %g times mass flow and %g K is not the duty", r["id"], v.MeanCp, dT)
+			t.Errorf("%s: mean cp %g times mass flow and %g K is not the duty", r.Text("id"), v.MeanCp, dT)
 		}
 	}
 	if ran < 45 {
 		t.Errorf("%d examples ran, want 45 or more", ran)
 	}
 	t.Logf("%d examples by the command", ran)
-}
-
-func number(t *testing.T, s string) float64 {
-	t.Helper()
-	x, err := strconv.ParseFloat(s, 64)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return x
-}
-
-func workedExamples(t *testing.T) []map[string]string {
-	t.Helper()
-	file, err := os.Open("../../../thermo/testdata/worked-examples.csv")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer file.Close()
-	c := csv.NewReader(file)
-	c.Comment = '#'
-	lines, err := c.ReadAll()
-	if err != nil {
-		t.Fatal(err)
-	}
-	var all []map[string]string
-	for _, line := range lines[1:] {
-		r := make(map[string]string)
-		for i, cell := range line {
-			r[lines[0][i]] = cell
-		}
-		all = append(all, r)
-	}
-	return all
 }
 
 // The working says which way the heat goes, how the flow became kg/s, and what is
@@ -186,6 +153,7 @@ func TestFluidCommandsRefuse(t *testing.T) {
 		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "-3 bar"}, exitWrong, "not above vacuum"},
 		{[]string{"properties", "water", "--temperature", "120 °C"}, exitFailed, "allowed at 101.325 kPa absolute: 0 °C to 99.97"},
 		{[]string{"properties", "water", "--temperature", "20 °C,-5 °C"}, exitFailed, "temperature -5 °C is below 0 °C"},
+		{[]string{"properties", "water", "--temperature", "20°C,90°C,150°C", "--pressure", "1 bar"}, exitFailed, "--temperature 150 °C: water: pressure 100 kPa is below 476.101 kPa"},
 		{[]string{"properties", "water", "--temperature", "20 °C", "--pressure", "2000 bar"}, exitFailed, "pressure 200000 kPa is above 100000 kPa"},
 		{[]string{"properties", "--list", "water"}, exitWrong, `unexpected "water"`},
 		{[]string{"duty", "water", "--from", "20 °C", "--to", "30 °C"}, exitWrong, "--flow is missing"},

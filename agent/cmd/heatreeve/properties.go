@@ -84,7 +84,10 @@ func pointsOf(f thermo.Fluid, Ts []float64, p float64) ([]point, error) {
 	for _, T := range Ts {
 		s, err := f.At(T, p)
 		if err != nil {
-			return nil, refusal(f, p, err)
+			if err = refusal(f, p, err); len(Ts) > 1 {
+				err = fmt.Errorf("--temperature %s °C: %w", celsius(T), err)
+			}
+			return nil, err
 		}
 		cp, density := f.Uncertainty(T, p)
 		all = append(all, point{
