@@ -21,8 +21,8 @@
 // part by itself, by half in the end, and is not believed. Methanol and glycerol have only
 // Melinder's own tables to be held against, 2.3 and 0.4 in cp; ethanol of 60 % at
 // -10 °C is 3.4 off them. With nothing dissolved the polynomials differ from
-// IAPWS-IF97 by at most 0.66 in cp and 0.13 in density, and freeze within 0.05 K of
-// 273.15 K. The uncertainties of a state follow from these.
+// IAPWS-IF97 by at most 0.66 in cp and 0.13 in density; they freeze within 0.05 K of
+// 273.15 K, and are led to the very 273.15 K below 2 %. The uncertainties of a state follow from these.
 //
 // The freezing curves stand within 0.6 K of the ASHRAE glycol tables (from memory)
 // to 30 % by mass. Stronger propylene glycol freezes up to 1.3 K later there than here,

@@ -28,9 +28,23 @@ type solute struct {
 // freezesAt is the freezing point in K at mass fraction x.
 func (s *solute) freezesAt(x float64) float64 { return horner(s.freezing[:], x-s.baseX) }
 
-// guard is the freezing point in K at mass fraction x, moved up to that of the other source
-// where there is one: between its rows by as much as at the rows, in proportion.
+// dilute is the mass fraction below which the freezing point is led to that of water.
+const dilute = 0.02
+
+// guard is the freezing point in K at mass fraction x: 273.15 K of water, at which the
+// polynomials arrive within 0.05 K, and from there to where the solution is no longer dilute
+// the polynomial's and what is left of that difference δ, δ (1 − x/0.02)².
 func (s *solute) guard(x float64) float64 {
+	if x <= 0 {
+		return zeroC
+	}
+	left := max(0, 1-x/dilute)
+	return s.soonest(x) + left*left*(zeroC-s.soonest(0))
+}
+
+// soonest is the freezing point in K at mass fraction x, moved up to that of the other source
+// where there is one: between its rows by as much as at the rows, in proportion.
+func (s *solute) soonest(x float64) float64 {
 	T := s.freezesAt(x)
 	for k := 1; k < len(s.sooner); k++ {
 		a, b := s.sooner[k-1], s.sooner[k]

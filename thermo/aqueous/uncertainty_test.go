@@ -66,11 +66,10 @@ func TestDriftIsInTheUncertainty(t *testing.T) {
 // where it would boil), within twice the stated uncertainty and the deviations found.
 func TestWaterIsTheLimit(t *testing.T) {
 	w := water.Liquid()
-	worstCp, worstRho, worstFreezing := 0.0, 0.0, 0.0
+	worstCp, worstRho := 0.0, 0.0
 	for k := range solutes {
 		s := &solutes[k]
 		f, trace := mustNew(t, s.name, 0, 0), mustNew(t, s.name, 1e-6, 0)
-		worstFreezing = max(worstFreezing, math.Abs(f.Bounds().MinT-273.15))
 		for T := 273.17; T <= s.maxT; T += 0.499 {
 			p := 1e5
 			if T > 370 {
@@ -93,9 +92,9 @@ func TestWaterIsTheLimit(t *testing.T) {
 			}
 		}
 	}
-	t.Logf("worst: cp %.3f %%, density %.3f %%, freezing point %.3f K", 100*worstCp, 100*worstRho, worstFreezing)
-	if !(worstCp <= 0.0069) || !(worstRho <= 0.0014) || !(worstFreezing <= 0.05) {
-		t.Errorf("off IAPWS-IF97 by %g in cp, %g in density, %g K in freezing point", worstCp, worstRho, worstFreezing)
+	t.Logf("worst: cp %.3f %%, density %.3f %%", 100*worstCp, 100*worstRho)
+	if !(worstCp <= 0.0069) || !(worstRho <= 0.0014) {
+		t.Errorf("off IAPWS-IF97 by %g in cp, %g in density", worstCp, worstRho)
 	}
 }
 
