@@ -78,7 +78,7 @@ func TestAgainstTEOS10(t *testing.T) {
 			got.Check(t, r, "rise of h from 0 °C", rise/(r.h-start.h)-1, 3.0e-3)
 		}
 		cp, density := f.Uncertainty(r.T, r.p)
-		if math.Sqrt(3)*cp < math.Abs(s.Cp/r.cp-1) || math.Sqrt(3)*density < math.Abs(s.Density/r.rho-1) {
+		if !(math.Sqrt(3)*cp >= math.Abs(s.Cp/r.cp-1)) || !(math.Sqrt(3)*density >= math.Abs(s.Density/r.rho-1)) {
 			t.Errorf("%+v: standard uncertainties %g and %g do not cover %+v", r, cp, density, s)
 		}
 	}
@@ -124,7 +124,7 @@ func TestCondenserCooling(t *testing.T) {
 	f := mustNew(t, 0.03516504)
 	m := 1000.0 / 3600 * mustAt(t, f, 288.15, atmosphere).Density
 	q, err := thermo.StreamHeat(f, m, 288.15, atmosphere, 298.15, atmosphere)
-	if err != nil || math.Abs(q/11388615-1) > 3e-3 || math.Abs(m/284.99334-1) > 5.2e-4 {
+	if err != nil || !(math.Abs(q/11388615-1) <= 3e-3) || !(math.Abs(m/284.99334-1) <= 5.2e-4) {
 		t.Errorf("%.0f W at %.4f kg/s, %v", q, m, err)
 	}
 	t.Logf("duty is off by %.2g, mass flow by %.2g", q/11388615-1, m/284.99334-1)
@@ -137,7 +137,7 @@ func TestFreezingPoint(t *testing.T) {
 		{0, 0, 0},
 	} {
 		lo, _ := mustNew(t, tt.practical*35.16504/35e3).Span(atmosphere)
-		if got := lo - zero - tt.celsius; math.Abs(got) > tt.tolerance {
+		if got := lo - zero - tt.celsius; !(math.Abs(got) <= tt.tolerance) {
 			t.Errorf("salinity %g freezes at %.4f °C, want %g", tt.practical, lo-zero, tt.celsius)
 		}
 	}
@@ -158,7 +158,7 @@ func TestRefusalNamesTheBound(t *testing.T) {
 	} {
 		_, err := f.At(tt.T, tt.p)
 		e := new(thermo.RangeError)
-		if !errors.As(err, &e) || e.Why != tt.why || math.Abs(e.Bound-tt.bound) > 2e-3 {
+		if !errors.As(err, &e) || e.Why != tt.why || !(math.Abs(e.Bound-tt.bound) <= 2e-3) {
 			t.Errorf("%g K, %g Pa: %v; want %g, %q", tt.T, tt.p, err, tt.bound, tt.why)
 		}
 	}
@@ -187,7 +187,7 @@ func TestUncertainty(t *testing.T) {
 		{0.12, 350, maxP, 8e-3, 1e-3},
 	} {
 		cp, density := mustNew(t, tt.s).Uncertainty(tt.T, tt.p)
-		if r := math.Sqrt(3); math.Abs(cp*r-tt.cp) > 1e-7 || math.Abs(density*r-tt.density) > 1e-12 {
+		if r := math.Sqrt(3); !(math.Abs(cp*r-tt.cp) <= 1e-7) || !(math.Abs(density*r-tt.density) <= 1e-12) {
 			t.Errorf("%+v: half-widths %g, %g", tt, cp*r, density*r)
 		}
 	}
@@ -212,14 +212,14 @@ func TestGuard(t *testing.T) {
 		{0.12, 393.15, 12e6, 3673.387006, 1037.996985}, {0.12, 273.15, 12e6, 3568.570483, 1101.015342}, {0.06, 353.15, 8e6, 3899.829313, 1019.007911},
 	} {
 		a := mustAt(t, mustNew(t, tt.s), tt.T, tt.p)
-		if math.Abs(a.Cp/tt.cp-1) > 1e-8 || math.Abs(a.Density/tt.density-1) > 1e-9 {
+		if !(math.Abs(a.Cp/tt.cp-1) <= 1e-8) || !(math.Abs(a.Density/tt.density-1) <= 1e-9) {
 			t.Errorf("%+v: %.10g, %.10g", tt, a.Cp, a.Density)
 		}
 	}
 }
 
 func TestRange(t *testing.T) {
-	if b := mustNew(t, 0.035).Bounds(); b.MinT != 273.15 || b.MaxT != 393.15 || b.MaxP != 12e6 || math.Abs(b.MinP-611.2) > 0.1 {
+	if b := mustNew(t, 0.035).Bounds(); b.MinT != 273.15 || b.MaxT != 393.15 || b.MaxP != 12e6 || !(math.Abs(b.MinP-611.2) <= 0.1) {
 		t.Errorf("%+v", b)
 	}
 }
