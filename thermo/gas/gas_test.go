@@ -166,7 +166,7 @@ func TestAgainstTables(t *testing.T) {
 		}
 	}
 	t.Logf("%d of the rows by At", accepted)
-	if accepted != 231 { // three of NO2 pair
+	if accepted != 231 { // NO2 pairs at two, water vapour freezes at one
 		t.Errorf("%d of the rows by At, want 231", accepted)
 	}
 	for _, s := range append(Species(), "dry-air") {
