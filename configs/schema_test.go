@@ -3,6 +3,7 @@ package configs_test
 import (
 	"bytes"
 	"errors"
+	"fmt"
 	"io/fs"
 	"os"
 	"path/filepath"
@@ -197,6 +198,57 @@ func TestSchemaKnowsTheBasis(t *testing.T) {
 		_, err := site.Parse("plant.yaml", text)
 		if (refusal == nil) != tt.good || (err == nil) != tt.good {
 			t.Errorf("%s: the schema says %v, the reader %v; good: %v", tt.fluid, refusal, err, tt.good)
+		}
+	}
+}
+
+// In the spelling of names the reader is wider than the schema, which says so, and in
+// nothing else: as the schema writes them, both take the same.
+func TestSchemaKnowsOneSpelling(t *testing.T) {
+	if !bytes.Contains(configs.Schema, []byte("in any case, with spaces or hyphens; this schema knows them as they are written here")) {
+		t.Error("the schema does not say that it is narrower")
+	}
+	for _, tt := range []struct{ free, strict string }{
+		{"{Propylene-Glycol: 32 %}", "{propylene glycol: 32 %}"},
+		{"{Gas: {n2: 79 %, o2: 21 %}}", "{gas: {N2: 79 %, O2: 21 %}}"},
+		{"{gas: {N2: 100 %}, model: Ideal}", "{gas: {N2: 100 %}, model: ideal}"},
+		{"{SEAWATER: 35 g/kg}", "{seawater: 35 g/kg}"},
+		{"{food: {Water: 100 %}}", "{food: {water: 100 %}}"},
+	} {
+		text := examples(t)["brackwater-creamery.yaml"]
+		for fluid, good := range map[string]bool{tt.free: false, tt.strict: true} {
+			file := bytes.Replace(text, []byte("\nfluids:\n"), []byte("\nfluids:\n  another: "+fluid+"\n"), 1)
+			if refusal := validate(t, file); (refusal == nil) != good {
+				t.Errorf("%s: the schema says %v", fluid, refusal)
+			}
+			if _, err := site.Parse("plant.yaml", file); err != nil {
+				t.Errorf("%s: the reader says %v", fluid, err)
+			}
+		}
+	}
+}
+
+// The pressures above which the schema and the README say that the ideal gas is refused are
+// those of the gases.
+func TestIdealGasEndsWhereItIsSaid(t *testing.T) {
+	readme, err := os.ReadFile("../README.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, g := range []struct{ formula, said string }{
+		{"N2", "968 kPa for N2"}, {"CH4", "591 kPa for CH4"}, {"CO2", "191 kPa for CO2"}, {"H2O", "120 kPa for H2O and NH3"}, {"NH3", "120 kPa for H2O and NH3"},
+	} {
+		f, err := site.ParseFluid("{gas: {" + g.formula + ": 100 %}, model: ideal}")
+		if err != nil {
+			t.Fatal(err)
+		}
+		if most := fmt.Sprintf("%.0f kPa ", f.Bounds().MaxP/1e3); !strings.HasPrefix(g.said, most) {
+			t.Errorf("%s ends at %s", g.formula, most)
+		}
+		for name, text := range map[string][]byte{"schema": configs.Schema, "README": readme} {
+			if !bytes.Contains(text, []byte(g.said)) {
+				t.Errorf("the %s does not say %q", name, g.said)
+			}
 		}
 	}
 }
