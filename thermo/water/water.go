@@ -30,10 +30,10 @@
 // pressure, though under pressure it freezes a little later. The release's
 // backward equations are left out: nothing here asks for T from h.
 //
-// Balances are worked in straight lines of shared powers, in a 65th (water) and a
+// Balances are worked in straight lines of shared powers, in a 67th (water) and a
 // 37th (steam) of the time of the equations as printed, with math.Pow; where one
-// fluid is asked for tens of thousands of them, those of [Tabulate] take a 220th
-// and a 170th.
+// fluid is asked for tens of thousands of them, those of [Tabulate] take a 225th
+// and a 172nd.
 package water
 
 import (
