@@ -47,7 +47,7 @@ func TestMoistAirFromTheSite(t *testing.T) {
 		if f.Fault != loads.NoFault || f.Latent != (tt.note != "") || !strings.Contains(f.Note, tt.note) {
 			t.Errorf("fault %v (%s), note %q; want %q", f.Fault, f.Reason, f.Note, tt.note)
 		}
-		if want := 2 * 1017.22 * 9; math.Abs(f.Duty-want) > 1 {
+		if want := 2 * 1017.22 * 9; !(math.Abs(f.Duty-want) <= 1) {
 			t.Errorf("duty %g W, want %g W", f.Duty, want)
 		}
 		if f.Share[loads.PartHumidity] == 0 {

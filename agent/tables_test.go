@@ -54,7 +54,7 @@ func TestWhatALoadSees(t *testing.T) {
 		}
 		got := seenBy(s, &s.Loads[i], usual)
 		for k, pair := range [...][2]float64{{got.T.lo, want.T.lo}, {got.T.hi, want.T.hi}, {got.p.lo, want.p.lo}, {got.p.hi, want.p.hi}} {
-			if math.Abs(pair[0]-pair[1]) > 1e-9*pair[1] {
+			if !(math.Abs(pair[0]-pair[1]) <= 1e-9*pair[1]) {
 				t.Errorf("%s: limit %d is %g, want %g", s.Loads[i].Name, k, pair[0], pair[1])
 			}
 		}
@@ -92,7 +92,7 @@ func TestTablesOfAPlant(t *testing.T) {
 			if err != nil || err2 != nil || err3 != nil {
 				t.Fatal(err, err2, err3)
 			}
-			if off := math.Abs(got.Duty/want.Duty - 1); off > 3e-6 {
+			if off := math.Abs(got.Duty/want.Duty - 1); !(off <= 3e-6) {
 				t.Errorf("%s, %g K: duty %g W from the table, %g W exactly: off by %.2g", s.Loads[i].Name, T, got.Duty, want.Duty, off)
 			}
 			if got != same {

@@ -69,7 +69,7 @@ func checkJSON(t *testing.T, payload []byte, r Reading) {
 	if r.At < clockSet || r.At > arrival+int64(DefaultAhead) || !r.Stamped {
 		t.Errorf("payload %q gave the stamp %d, out of bounds", payload, r.At)
 	}
-	if want, ok := otherStamp(string(members["t"])); !ok || math.Abs(float64(r.At-want)) > 1000 {
+	if want, ok := otherStamp(string(members["t"])); !ok || !(math.Abs(float64(r.At-want)) <= 1000) {
 		t.Errorf("payload %q gave the stamp %d, want %d (%v)", payload, r.At, want, ok)
 	}
 }

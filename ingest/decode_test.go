@@ -92,7 +92,7 @@ func TestPointersOfRFC6901(t *testing.T) {
 }
 
 func TestUnits(t *testing.T) {
-	if o := decodeOne(t, bare(), "7.2", false); math.Abs(o.Value-0.002) > 1e-18 {
+	if o := decodeOne(t, bare(), "7.2", false); !(math.Abs(o.Value-0.002) <= 1e-18) {
 		t.Errorf("7.2 m³/h = %v m³/s, want 0.002", o.Value)
 	}
 	if o := decodeOne(t, celsius(), `{"v":60,"t":1774745970}`, false); o.Value != 333.15 {

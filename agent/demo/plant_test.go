@@ -125,7 +125,7 @@ func carryTheTrueDuty(t *testing.T, s *site.Site) {
 				moved[k] += b
 				bound += 1.02 * math.Abs(heat(t, l, moved)-got)
 			}
-			if math.Abs(got-want) > bound {
+			if !(math.Abs(got-want) <= bound) {
 				t.Errorf("%s after %v: %.1f W from the signals, true %.1f W, want within %.1f W", l.Name, at, got, want, bound)
 			}
 			if want > 0 {
@@ -133,7 +133,7 @@ func carryTheTrueDuty(t *testing.T, s *site.Site) {
 			}
 		}
 		// The standard error of the mean is below 0.15 % / sqrt(400).
-		if bias := sum / n; math.Abs(bias) > 3e-4 {
+		if bias := sum / n; !(math.Abs(bias) <= 3e-4) {
 			t.Errorf("%s: signals are off by %.3f %% on average, want 0 within 0.03 %%", l.Name, bias*100)
 		}
 	}
@@ -220,12 +220,12 @@ func TestNoise(t *testing.T) {
 	var sum, squares float64
 	for i := range n {
 		v := x.noise(time.Duration(i) * time.Second)
-		if math.Abs(v) > 1 {
+		if !(math.Abs(v) <= 1) {
 			t.Fatalf("noise of %g, want at most 1", v)
 		}
 		sum, squares = sum+v, squares+v*v
 	}
-	if mean, deviation := sum/n, math.Sqrt(squares/n); math.Abs(mean) > 0.005 || math.Abs(deviation-1.0/3) > 0.005 {
+	if mean, deviation := sum/n, math.Sqrt(squares/n); !(math.Abs(mean) <= 0.005) || !(math.Abs(deviation-1.0/3) <= 0.005) {
 		t.Errorf("noise has mean %.4f and standard deviation %.4f, want 0 and 0.3333", mean, deviation)
 	}
 	if x.noise(1500*time.Millisecond) != x.noise(time.Second) {

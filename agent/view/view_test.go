@@ -41,7 +41,7 @@ func TestMeanFadesWhenNothingComes(t *testing.T) {
 		now  int64
 		want float64
 	}{{0, 107, 1}, {0, 137, 0.5}, {0, 200, 0}, {1, 107 + 450, 0.25}, {2, 107 + 3600, 0}} {
-		if m := s.Mean(0, tt.k, tt.now*second); math.Abs(m.Coverage-tt.want) > 1e-12 {
+		if m := s.Mean(0, tt.k, tt.now*second); !(math.Abs(m.Coverage-tt.want) <= 1e-12) {
 			t.Errorf("window %d at %d s: coverage %g, want %g", tt.k, tt.now, m.Coverage, tt.want)
 		}
 	}

@@ -66,7 +66,7 @@ func TestDutyWorksTheExamples(t *testing.T) {
 				t.Errorf("%s: %s = %.9g, want %.9g within %g (%s)", r.Text("id"), f.name, f.got, want, tolerance, r.Text("source"))
 			}
 		}
-		if dT := v.OutletT - v.InletT; math.Abs(v.MassFlow*v.MeanCp*dT/v.Duty-1) > 1e-12 {
+		if dT := v.OutletT - v.InletT; !(math.Abs(v.MassFlow*v.MeanCp*dT/v.Duty-1) <= 1e-12) {
 			t.Errorf("%s: mean cp %g times mass flow and %g K is not the duty", r.Text("id"), v.MeanCp, dT)
 		}
 	}

@@ -32,7 +32,7 @@ func TestPropertiesOfWater(t *testing.T) {
 			"temperature_K": 300, "pressure_Pa": 3e6, "enthalpy_J_per_kg": 115331.273, "internal_energy_J_per_kg": 112324.818,
 			"cp_J_per_kg_K": 4173.01218, "density_kg_per_m3": 1 / 0.100215168e-2,
 		} {
-			if got, ok := v[key].(float64); !ok || math.Abs(got/want-1) > 5e-9 {
+			if got, ok := v[key].(float64); !ok || !(math.Abs(got/want-1) <= 5e-9) {
 				t.Errorf("%q: %s = %v, want %.9g", args, key, v[key], want)
 			}
 		}
@@ -46,7 +46,7 @@ func TestPropertiesOfWater(t *testing.T) {
 // and a temperature below zero is no option.
 func TestPropertiesOfSeveralTemperatures(t *testing.T) {
 	all := askJSON[[]point](t, "properties", "propylene glycol 32 %", "--temperature", "-10°C, 0 °C,60°C", "--pressure", "4 bar")
-	if len(all) != 3 || math.Abs(all[0].Temperature-263.15) > 1e-9 || all[2].Enthalpy <= all[1].Enthalpy {
+	if len(all) != 3 || !(math.Abs(all[0].Temperature-263.15) <= 1e-9) || all[2].Enthalpy <= all[1].Enthalpy {
 		t.Errorf("%+v", all)
 	}
 	status, out, errs := invoke("properties", "propylene glycol 32 %", "--temperature", "-10°C,0°C,60°C")
