@@ -41,17 +41,6 @@ var critical = map[string]criticalPoint{
 	"Cl2":   {416.8654, 7642388, 0.07},
 }
 
-// virial returns the second virial coefficient in m³/mol at T in K and its second derivative
-// by T, by the corresponding states of Pitzer and Curl with Abbott's
-// coefficients (from memory).
-func (c criticalPoint) virial(T float64) (B, second float64) {
-	t := T / c.T
-	v := thermo.R * c.T / c.p
-	B = v * (0.083 - 0.422*math.Pow(t, -1.6) + c.omega*(0.139-0.172*math.Pow(t, -4.2)))
-	second = -v / (c.T * c.T) * (0.422*1.6*2.6*math.Pow(t, -3.6) + c.omega*0.172*4.2*5.2*math.Pow(t, -6.2))
-	return B, second
-}
-
 // vapourTemperature in K at the pressure p in Pa draws log p over 1/T as the straight line
 // through the critical point and the point that defines the acentric factor, Tr =
 // 0.7: within 1.5 K at atmospheric pressure. Above the critical pressure it runs on,

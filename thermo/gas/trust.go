@@ -23,7 +23,7 @@ type trust struct {
 // The deviations of N2 to C3H8 and of NH3 are those of testdata/real-gas.csv,
 // where each equation is named. H2O: IAPWS-95 at 400 K, 1 bar, since it is no gas
 // at 300 K and 1 bar. All others: second virial coefficient in corresponding
-// states, see [criticalPoint.virial]. The powers of H2O and NH3 are fitted to IAPWS-IF97 and
+// states (Pitzer and Curl, in the tests). The powers of H2O and NH3 are fitted to IAPWS-IF97 and
 // to Gao et al. (2023); those of the other polar gases are a guess on the safe side.
 var trusts = map[string]trust{
 	"N2":    plain(0.00155e-5, 0.00018e-5),

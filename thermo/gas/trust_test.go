@@ -147,3 +147,14 @@ func TestTrustByCorrespondingStates(t *testing.T) {
 		}
 	}
 }
+
+// virial returns the second virial coefficient in m³/mol at T in K and its second derivative
+// by T, by the corresponding states of Pitzer and Curl with Abbott's
+// coefficients (from memory).
+func (c criticalPoint) virial(T float64) (B, second float64) {
+	t := T / c.T
+	v := thermo.R * c.T / c.p
+	B = v * (0.083 - 0.422*math.Pow(t, -1.6) + c.omega*(0.139-0.172*math.Pow(t, -4.2)))
+	second = -v / (c.T * c.T) * (0.422*1.6*2.6*math.Pow(t, -3.6) + c.omega*0.172*4.2*5.2*math.Pow(t, -6.2))
+	return B, second
+}
