@@ -29,13 +29,16 @@ var arrows = map[string][]string{
 	"agent/design": {"thermo"},
 	"agent/site":   {"thermo/..."},
 	"agent/view":   {"agent/loads", "agent/design"},
+	"agent/account": {
+		"agent/loads",
+	},
 	"agent/metrics": {
 		"agent/view", "agent/loads", "agent/design",
 	},
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water"},
+	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water"},
 	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
@@ -46,6 +49,9 @@ var outside = map[string][]string{
 	"thermo/...":   {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
 	"agent/loads":  {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/design": {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/account": {
+		"os", "net", "log", "log/slog", "context", "net/http",
+	},
 }
 
 func matches(pattern, path string) bool {

@@ -1,0 +1,377 @@
+package account
+
+import (
+	"errors"
+	"iter"
+	"math"
+	"math/big"
+	"slices"
+	"strings"
+	"testing"
+	"time"
+
+	"pgregory.net/rapid"
+)
+
+func wantError(t *testing.T, what string, err error, want string) {
+	t.Helper()
+	if err == nil || !strings.Contains(err.Error(), want) {
+		t.Errorf("%s: error %v, want ...%q...", what, err, want)
+	}
+}
+
+// all yields records that carry no error.
+func all(records []Record) iter.Seq2[Record, error] {
+	return func(yield func(Record, error) bool) {
+		for _, r := range records {
+			if !yield(r, nil) {
+				return
+			}
+		}
+	}
+}
+
+func collect(t interface{ Fatal(...any) }, p Plan, records []Record) []Period {
+	if err := p.Check(); err != nil {
+		t.Fatal(err)
+	}
+	var out []Period
+	for x, err := range Periods(p, all(records)) {
+		if err != nil {
+			t.Fatal(err)
+		}
+		out = append(out, x)
+	}
+	return out
+}
+
+// record is a minute of one duty, in the load's service, measured for some seconds.
+func record(start int64, duty, uncertainty float64, seconds int64) Record {
+	r := Record{Start: start, End: start + minute, Measured: seconds * int64(time.Second), Duty: duty, Lowest: duty, Highest: duty, Uncertainty: uncertainty}
+	r.Given, r.Taken = max(0, duty)*float64(seconds), max(0, -duty)*float64(seconds)
+	return r
+}
+
+func near(t *testing.T, what string, got, want, relative float64) {
+	t.Helper()
+	if math.Abs(got-want) > relative*math.Abs(want) {
+		t.Errorf("%s is %.17g, want %.17g", what, got, want)
+	}
+}
+
+// A duty that rises by d each minute through the 25 hours of a day gives
+// d·60 s·n(n−1)/2, its quarters rise with it, and its uncertainty, 1 % of it, does not
+// average out.
+func TestRampOverALongDay(t *testing.T) {
+	zone, from := place(t, "Europe/Dublin"), at(t, "2026-10-25T00:00+01:00")
+	const n, d = 1500, 400.0
+	var records []Record
+	for k := range int64(n) {
+		records = append(records, record(from+k*minute, d*float64(k), 0.01*d*float64(k), 60))
+	}
+	day := collect(t, Plan{From: from, To: from + 25*hour, Through: from + 26*hour, By: Day, Zone: zone, Demand: 15 * time.Minute}, records)
+	if len(day) != 1 {
+		t.Fatalf("%d days, want 1", len(day))
+	}
+	p := day[0]
+	want := d * 60 * n * (n - 1) / 2
+	near(t, "heat given", p.Given, want, 1e-15)
+	near(t, "heat served", p.Served, want, 1e-15)
+	near(t, "uncertainty", p.Uncertainty, 0.01*want, 1e-15)
+	mean, u := p.Mean()
+	near(t, "mean duty", mean, d*(n-1)/2, 1e-15)
+	near(t, "its uncertainty", u, 0.01*d*(n-1)/2, 1e-15)
+	if p.Measured != 25*hour || p.Missing != 0 || p.Taken != 0 || p.Coverage() != 1 || !p.Whole() {
+		t.Errorf("a day all measured: %+v", p)
+	}
+	if p.Lowest != (Extreme{0, from}) || p.Highest != (Extreme{d * (n - 1), from + (n-1)*minute}) {
+		t.Errorf("lowest %+v, highest %+v", p.Lowest, p.Highest)
+	}
+	near(t, "peak", p.Demand.Peak, d*(n-8), 1e-15) // the last quarter: the mean of n−15 to n−1
+	if end := from + 25*hour; p.Demand.PeakEnd != end || p.Demand.PeakStart != end-hour/4 || p.Demand.Windows != 100 || p.Demand.Full != 100 || p.Demand.PeakCoverage != 1 {
+		t.Errorf("demand %+v", p.Demand)
+	}
+}
+
+// Steps with gaps: what is missing has no heat, and lowers the demand of its window
+// but not the mean duty.
+func TestStepsWithGaps(t *testing.T) {
+	from := at(t, "2026-06-01T10:00Z")
+	var records []Record
+	for k := range int64(60) {
+		switch {
+		case k < 10: // nothing of it is there
+		case k < 15:
+			records = append(records, record(from+k*minute, 900e3, 9e3, 60))
+		case k < 30:
+			records = append(records, record(from+k*minute, 500e3, 5e3, 30))
+		default:
+			records = append(records, record(from+k*minute, -200e3, 2e3, 60))
+		}
+	}
+	p := collect(t, Plan{From: from, To: from + hour, Through: from + hour, By: Hour, Zone: time.UTC, Demand: 15 * time.Minute}, records)[0]
+	near(t, "heat given", p.Given, 900e3*300+500e3*450, 0)
+	near(t, "heat taken", p.Taken, 200e3*1800, 0)
+	near(t, "heat served", p.Served, p.Given-p.Taken, 1e-15)
+	near(t, "uncertainty", p.Uncertainty, 9e3*300+5e3*450+2e3*1800, 1e-15)
+	if s := int64(time.Second); p.Measured != 2550*s || p.Missing != 1050*s || p.Bridged != 0 {
+		t.Errorf("measured %d, missing %d", p.Measured/s, p.Missing/s)
+	}
+	mean, _ := p.Mean()
+	near(t, "mean duty", mean, (900e3*300+500e3*450-200e3*1800)/2550, 1e-15)
+	// 900 kW for a third of a quarter are 300 kW of demand, 500 kW for half of one 250 kW.
+	near(t, "peak", p.Demand.Peak, 300e3, 1e-15)
+	near(t, "its coverage", p.Demand.PeakCoverage, 1.0/3, 1e-15)
+	if p.Demand.PeakStart != from || p.Demand.Windows != 4 || p.Demand.Full != 2 {
+		t.Errorf("demand %+v", p.Demand)
+	}
+}
+
+// The first and the last period are there in part, as asked and as far as event time
+// has come; windows that are cut do not count.
+func TestPeriodsInPart(t *testing.T) {
+	zone := place(t, "Asia/Kolkata")
+	from, to := at(t, "2026-06-01T10:20+05:30"), at(t, "2026-06-03T00:00+05:30")
+	through := at(t, "2026-06-02T09:07+05:30") + 59*int64(time.Second)
+	p := collect(t, Plan{From: from, To: to, Through: through, By: Day, Zone: zone, Demand: time.Hour}, []Record{record(from, 1, 0, 60)})
+	if len(p) != 2 || p[0].From != from || p[0].Whole() || p[1].To != at(t, "2026-06-02T09:07+05:30") || p[1].End != to || p[1].Whole() {
+		t.Fatalf("periods %+v", p)
+	}
+	if p[0].Demand.Windows != 13 || p[1].Demand.Windows != 9 || p[0].Demand.PeakEnd != 0 || p[0].Demand.Full != 0 {
+		t.Errorf("windows %+v, %+v; want 13 and 9, and no peak of a window that is cut", p[0].Demand, p[1].Demand)
+	}
+	if p[0].Missing != p[0].To-p[0].From-minute || p[1].Missing != p[1].To-p[1].From || p[1].Covered() || p[1].Coverage() != 0 {
+		t.Errorf("missing %v, %v", p[0].Missing, p[1].Missing)
+	}
+	if late := collect(t, Plan{From: to, To: to + hour, Through: through, By: Hour, Zone: zone}, nil); len(late) != 0 {
+		t.Errorf("%d periods that event time has not come to", len(late))
+	}
+}
+
+func TestWrongRecordsAreNotCounted(t *testing.T) {
+	from := at(t, "2026-06-01T10:30Z")
+	good := record(from+30*minute, 1e3, 0, 60)
+	wrong := func(change func(*Record)) Record { r := good; change(&r); return r }
+	gone := errors.New("gone")
+	for _, tt := range []struct {
+		record Record
+		err    error
+		want   string
+	}{
+		{wrong(func(r *Record) { r.Given = math.NaN() }), nil, "heat given is NaN"},
+		{wrong(func(r *Record) { r.Taken = -1 }), nil, "heat taken is -1"},
+		{wrong(func(r *Record) { r.Duty = math.Inf(1) }), nil, "duty is +Inf"},
+		{wrong(func(r *Record) { r.Measured = 61 * int64(time.Second) }), nil, "1m1s measured"},
+		{wrong(func(r *Record) { r.End = r.Start; r.Measured = 0 }), nil, "of 0s"},
+		{wrong(func(r *Record) { r.Start -= hour; r.End -= hour }), nil, "is before"},
+		{wrong(func(r *Record) { r.Start += 2 * hour; r.End += 2 * hour }), nil, "goes on after"},
+		{wrong(func(r *Record) { r.End += hour }), nil, "where the hour ends"},
+		{wrong(func(r *Record) { r.End += 20 * minute }), nil, "where the demand window of 15m0s ends"},
+		{Record{}, gone, "gone"},
+	} {
+		plan := Plan{From: from, To: from + 2*hour, Through: from + 2*hour, By: Hour, Zone: time.UTC, Demand: 15 * time.Minute}
+		records := func(yield func(Record, error) bool) { _ = yield(tt.record, tt.err) && yield(good, nil) }
+		var faults []error
+		var total Total
+		for p, err := range Periods(plan, records) {
+			if err != nil {
+				faults = append(faults, err)
+				continue
+			}
+			total.Add(p)
+		}
+		if len(faults) != 1 {
+			t.Errorf("%d errors, want one: ...%q...", len(faults), tt.want)
+			continue
+		}
+		wantError(t, "record", faults[0], tt.want)
+		if p := total.Period(); p.Given != good.Given || p.Measured != minute || p.Demand.Windows != 8 {
+			t.Errorf("beside a record with %q the good one gives %+v", tt.want, p)
+		}
+	}
+}
+
+func TestPlanCheck(t *testing.T) {
+	good := Plan{From: 0, To: 1, By: Day, Zone: time.UTC}
+	for _, tt := range []struct {
+		change func(*Plan)
+		want   string
+	}{
+		{func(p *Plan) { p.By = 9 }, "kind 9"},
+		{func(p *Plan) { p.Demand = 7 * time.Minute }, "demand window of 7m0s"},
+		{func(p *Plan) { p.To = 0 }, "not after its beginning"},
+	} {
+		p := good
+		tt.change(&p)
+		wantError(t, tt.want, p.Check(), tt.want)
+	}
+}
+
+// history draws minutes of some days around a change of the clock, with gaps.
+func history(t *rapid.T) (p Plan, records []Record) {
+	zone := place(t, rapid.SampledFrom(zones).Draw(t, "zone"))
+	from := rapid.SampledFrom([]string{"2026-03-07T12:00Z", "2026-03-27T22:00Z", "2026-04-03T00:00Z", "2026-10-02T09:00Z", "2026-10-23T20:00Z", "2026-10-30T12:00Z"}).Draw(t, "from")
+	p = Plan{From: at(t, from) + rapid.Int64Range(0, 1500).Draw(t, "later")*minute, By: Hour, Zone: zone}
+	p.To = p.From + rapid.Int64Range(1, 5*1440).Draw(t, "span")*minute
+	p.Through = p.To + rapid.Int64Range(-2000, 10).Draw(t, "through")*minute
+	p.Demand = rapid.SampledFrom(append(DemandLengths(), 0)).Draw(t, "demand")
+	step := rapid.Int64Range(1, 40).Draw(t, "step")
+	random := uint64(rapid.Uint32().Draw(t, "seed"))
+	for x := p.From; x < p.Until(); x += minute {
+		random = random*6364136223846793005 + 1442695040888963407 // Knuth's MMIX
+		if a := int64(random >> 33); a%step < 3 {
+			r := record(x, float64(a%2_000_003)-500e3, float64(a%9973), 1+a%60)
+			records = append(records, r)
+		}
+	}
+	return p, records
+}
+
+// exact adds without rounding.
+func exact(records []Record, of func(*Record) float64) float64 {
+	sum := new(big.Float).SetPrec(2000)
+	for i := range records {
+		sum.Add(sum, new(big.Float).SetFloat64(of(&records[i])))
+	}
+	out, _ := sum.Float64()
+	return out
+}
+
+// Hours add up to days and days to months; times to the nanosecond, heats to the
+// rounding of the last bits, and to what the records hold.
+func TestAccountsOfAllKindsAgree(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		p, records := history(t)
+		totals := make(map[By]Period)
+		for _, by := range Kinds() {
+			p.By = by
+			var total Total
+			end := p.From
+			for _, x := range collect(t, p, records) {
+				if x.From != end || x.To <= x.From || x.Measured+x.Bridged+x.Missing != x.To-x.From || x.Missing < 0 {
+					t.Fatalf("%v after %s: %+v", by, stamp(end), x)
+				}
+				end = x.To
+				total.Add(x)
+			}
+			if end != max(p.From, p.Until()) {
+				t.Fatalf("%v: ends at %s, want %s", by, stamp(end), stamp(p.Until()))
+			}
+			totals[by] = total.Period()
+		}
+		for _, by := range Kinds() {
+			checkTotal(t, by, totals[by], totals[Month], records)
+		}
+	})
+}
+
+func checkTotal(t *rapid.T, by By, got, month Period, records []Record) {
+	for _, f := range []struct {
+		what string
+		got  float64
+		of   func(*Record) float64
+	}{
+		{"given", got.Given, func(r *Record) float64 { return r.Given }},
+		{"taken", got.Taken, func(r *Record) float64 { return r.Taken }},
+		{"served", got.Served, func(r *Record) float64 { return r.Duty * r.covered() }},
+		{"uncertainty", got.Uncertainty, func(r *Record) float64 { return r.Uncertainty * r.covered() }},
+	} {
+		want := exact(records, f.of)
+		scale := exact(records, func(r *Record) float64 { return math.Abs(f.of(r)) })
+		if math.Abs(f.got-want) > 1e-14*scale {
+			t.Fatalf("by %v: %s %.17g, the records hold %.17g", by, f.what, f.got, want)
+		}
+	}
+	got.Given, got.Taken, got.Served, got.Uncertainty = month.Given, month.Taken, month.Served, month.Uncertainty
+	got.Start, got.End = month.Start, month.End
+	if got != month {
+		t.Fatalf("by %v: %+v,\nby month: %+v", by, got, month)
+	}
+}
+
+// The demand of each window against a second way to find it: by what a wall clock
+// shows at each minute.
+func TestDemandByTheWallClock(t *testing.T) {
+	type mark struct {
+		shown  string
+		number int
+	}
+	rapid.Check(t, func(t *rapid.T) {
+		p, records := history(t)
+		p.Demand = rapid.SampledFrom(DemandLengths()).Draw(t, "length")
+		wall := func(x int64) mark {
+			at := time.Unix(0, x).In(p.Zone)
+			return mark{at.Format("2006-01-02 15 -07:00"), at.Minute() / int(p.Demand/time.Minute)}
+		}
+		minutes := make(map[mark]int64)
+		served, covered := make(map[mark]float64), make(map[mark]int64)
+		for x := p.From; x < p.Until(); x += minute {
+			minutes[wall(x)]++
+		}
+		if p.Until() > p.From { // the windows at both ends may be cut
+			for x := p.From - minute; wall(x) == wall(p.From); x -= minute {
+				delete(minutes, wall(x))
+			}
+			if wall(p.Until()) == wall(p.Until()-minute) {
+				delete(minutes, wall(p.Until()))
+			}
+		}
+		for i := range records {
+			if m := wall(records[i].Start); minutes[m] > 0 {
+				served[m] += records[i].Duty * records[i].covered()
+				covered[m] += records[i].Measured
+			}
+		}
+		peak, full := math.Inf(-1), 0
+		for m, s := range served {
+			peak = max(peak, s/float64(60*minutes[m]))
+			if covered[m] == minutes[m]*minute {
+				full++
+			}
+		}
+		var total Total
+		p.By = Day
+		for _, x := range collect(t, p, records) {
+			total.Add(x)
+		}
+		d := total.Period().Demand
+		if d.Windows != len(minutes) || d.Full != full || (d.PeakEnd > d.PeakStart) != (len(served) > 0) {
+			t.Fatalf("%+v; by the wall clock %d windows, %d full, %d covered", d, len(minutes), full, len(served))
+		}
+		if m := wall(d.PeakStart); len(served) > 0 && (math.Abs(d.Peak-peak) > 1e-9*math.Abs(peak)+1e-6 ||
+			math.Abs(d.PeakCoverage-float64(covered[m])/float64(minutes[m]*minute)) > 1e-12 || d.PeakEnd-d.PeakStart != minutes[m]*minute) {
+			t.Fatalf("%+v; by the wall clock the peak is %g", d, peak)
+		}
+	})
+}
+
+// Records by the hour give the days that those by the minute give, where the clock is
+// off UTC by full hours.
+func TestRecordsByTheHour(t *testing.T) {
+	zone, from := place(t, "Europe/Dublin"), at(t, "2026-10-24T00:00+01:00")
+	var minutes, hours []Record
+	for x := from; x < from+49*hour; x += minute {
+		minutes = append(minutes, record(x, float64(x/minute%977)*1e3, 5e3, 60))
+	}
+	for some := range slices.Chunk(minutes, 60) {
+		h := Record{Start: some[0].Start, End: some[59].End, Measured: hour, Uncertainty: 5e3, Lowest: math.Inf(1), Highest: math.Inf(-1)}
+		for _, r := range some {
+			h.Given += r.Given
+			h.Duty += r.Duty / 60
+			h.Lowest, h.Highest = min(h.Lowest, r.Lowest), max(h.Highest, r.Highest)
+		}
+		hours = append(hours, h)
+	}
+	p := Plan{From: from, To: from + 49*hour, Through: from + 49*hour, By: Day, Zone: zone}
+	fine, coarse := collect(t, p, minutes), collect(t, p, hours)
+	if len(fine) != 2 || len(coarse) != 2 {
+		t.Fatalf("%d and %d days, want 2", len(fine), len(coarse))
+	}
+	for i := range fine {
+		near(t, "heat by the hour", coarse[i].Given, fine[i].Given, 1e-14)
+		near(t, "uncertainty by the hour", coarse[i].Uncertainty, fine[i].Uncertainty, 1e-14)
+		if coarse[i].Measured != fine[i].Measured || coarse[i].Highest.Duty != fine[i].Highest.Duty {
+			t.Errorf("by the hour %+v, by the minute %+v", coarse[i], fine[i])
+		}
+	}
+}
