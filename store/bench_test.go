@@ -7,6 +7,7 @@ import (
 	"math/rand/v2"
 	"path/filepath"
 	"testing"
+	"time"
 
 	bolt "go.etcd.io/bbolt"
 )
@@ -182,6 +183,53 @@ func year(b *testing.B) (path string, end int64) {
 	return path, start + 365*day
 }
 
+// bucketBytes is what the pages of a bucket take.
+func bucketBytes(b *testing.B, s *Store, name []byte) (n int) {
+	b.Helper()
+	err := s.db.View(func(tx *bolt.Tx) error {
+		stats := tx.Bucket(name).Stats()
+		n = stats.BranchAlloc + stats.LeafAlloc
+		return nil
+	})
+	if err != nil {
+		b.Fatal(err)
+	}
+	return n
+}
+
+// BenchmarkBuildHours brings a year of minutes without hours to hours, as the
+// commits after an upgrade do. ms/worst is the longest of them.
+func BenchmarkBuildHours(b *testing.B) {
+	path, end := year(b)
+	s := openStore(b, path, Options{MaxBytes: 1 << 30})
+	for b.Loop() {
+		if err := s.db.Update(func(tx *bolt.Tx) error { return putHourMark(tx, unbuilt) }); err != nil {
+			b.Fatal(err)
+		}
+		start := time.Now()
+		if n := len(drain(b, s.Hours(3, end-30*day, end))); n != 30*24 {
+			b.Fatalf("%d hours", n)
+		}
+		b.ReportMetric(float64(time.Since(start).Microseconds())/1e3, "ms/query-before")
+		worst, commits := time.Duration(0), 0
+		for built := int64(0); built < end-hourNanos; commits++ {
+			start := time.Now()
+			commit(b, s, Batch{})
+			worst = max(worst, time.Since(start))
+			err := s.view(func(tx *bolt.Tx) error {
+				mark, err := readHourMark(tx)
+				built = mark.built
+				return err
+			})
+			if err != nil {
+				b.Fatal(err)
+			}
+		}
+		b.ReportMetric(float64(worst.Microseconds())/1e3, "ms/worst")
+		b.ReportMetric(float64(commits), "commits")
+	}
+}
+
 // BenchmarkYear opens a file with a year in it, and reads 30 days of minutes of
 // one load of ten, and one day of one tag of fifty.
 func BenchmarkYear(b *testing.B) {
@@ -211,6 +259,14 @@ func BenchmarkYear(b *testing.B) {
 				b.Fatalf("%d minutes", n)
 			}
 		}
+	})
+	b.Run("hours", func(b *testing.B) {
+		for b.Loop() {
+			if n := len(drain(b, s.Hours(3, end-30*day, end))); n != 30*24 {
+				b.Fatalf("%d hours", n)
+			}
+		}
+		b.ReportMetric(float64(bucketBytes(b, s, bucketHours)), "B/year-of-10")
 	})
 	b.Run("readings", func(b *testing.B) {
 		for b.Loop() {

@@ -70,6 +70,11 @@ func outcome(t *testing.T, path string) error {
 			return err
 		}
 	}
+	for _, err := range s.Hours(1, 0, math.MaxInt64) {
+		if err != nil {
+			return err
+		}
+	}
 	if _, err := s.Registers(); err != nil {
 		return err
 	}
@@ -219,7 +224,7 @@ func TestUnknownVersion(t *testing.T) {
 		return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version+1))
 	})
 	_, err := Open(path, Options{})
-	if !errors.Is(err, ErrVersion) || !strings.Contains(err.Error(), "version 2") {
+	if !errors.Is(err, ErrVersion) || !strings.Contains(err.Error(), "version 3") {
 		t.Errorf("version %d: %v", Version+1, err)
 	}
 }

@@ -1,10 +1,10 @@
 // Package store keeps the history of a plant in one bbolt file: the readings
-// as they came, one record a minute of each load, the energy registers, and the
-// engine's own state. Everything that belongs together is committed in one
+// as they came, one record a minute and one an hour of each load, the energy
+// registers, and the engine's own state. Everything that belongs together is committed in one
 // transaction, so that a process killed at any moment finds on its return
 // either all of a batch or nothing of it.
 //
-// # Layout, version 1
+// # Layout, version 2
 //
 // The file holds these buckets. Integers in keys are big-endian, so that keys
 // sort as numbers do; a signed time has its sign bit flipped for the same
@@ -14,8 +14,9 @@
 // of the value before the checksum. The keys "all" and "checkpoint" are there from the
 // beginning.
 //
-//	meta       "version"  uint32: 1
+//	meta       "version"  uint32: 2
 //	           "created"  int64: Unix nanoseconds at creation
+//	           "hours"    int64 built, int64 trimmed; CRC
 //	names      "all" -> for each name: uint32 id, uvarint length and bytes of its
 //	           kind, the same of the name; CRC
 //	journal    a bucket for each closed group, by its name; in it "r" -> records
@@ -23,12 +24,13 @@
 //	           of its first record; in it "r" -> records
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
 //	minutes    int64 start, uint32 load / 8 -> minute records, CRC
+//	hours      int64 start, uint32 load / 8 -> hour records, CRC
 //	registers  "all" -> for each load, by number: uint32 load and 4 float64
 //	           (given, taken, measured, missing); CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
 //	           record it stands for, the engine's bytes, CRC
 //
-// names, minutes and state also hold an empty bucket named 00: a bucket that holds
+// names, minutes, hours and state also hold an empty bucket named 00: a bucket that holds
 // another is never laid into the root's page, whose room the tails need.
 //
 // Each batch that has beats makes one record, and records are numbered from 1
@@ -83,6 +85,15 @@
 // first; the count says how many. The forerunner is 0, but Duty for DutyMin and
 // DutyMax, and Inlet for Outlet.
 //
+// Hours lie in the same way: the remainder, uvarint minutes, 7 bytes of counts and 14
+// floats, in the order Measured, Bridged, Missing, Given, Taken, Duty, DutyMin,
+// DutyMax, Demand, HeatUncertainty, Mass, Inlet, Outlet, Pressure. The forerunner is
+// Duty for the three after it, and Inlet for Outlet. Hours that begin before built are
+// there; later ones are told from their minutes. A commit that brings minutes of a
+// later hour builds those before it, and one that brings minutes of a built hour
+// builds it anew from all of its minutes, so that none counts twice. Of hours
+// before trimmed minutes may be gone: such an hour stays as it was built.
+//
 // # Why in this shape
 //
 // bbolt writes whole pages, and a path of them from leaf to root. A small bucket
@@ -96,6 +107,9 @@
 // The list of free pages is not kept in the file, which spares a page a commit;
 // Open makes it from the same walk over all pages that finds damage.
 //
-// A version other than 1 is refused. Change any of the above, and the version
-// must change with it.
+// Open brings a file of version 1, which has no hours, to version 2: it moves the
+// tails to recent, which makes room in the root's page, and adds what is missing,
+// with built and trimmed at the least int64. The commits that follow build the hours, a
+// few each. Other versions are refused. Change any of the above, and the version must
+// change with it.
 package store

@@ -30,7 +30,7 @@ func numbered(n uint64) Batch {
 	at := int64(n) * second
 	b := Batch{
 		Beats:     []Beat{{Through: at, Readings: []Reading{{Tag: 1, At: at, Value: float64(n)}}}},
-		Minutes:   []Minute{{Load: 1, Start: at, Duty: float64(n)}},
+		Minutes:   []Minute{{Load: 1, Start: at * 60, Given: float64(n), Duty: float64(n)}},
 		Registers: []Register{{Load: 1, Given: float64(n * (n + 1) / 2)}},
 	}
 	for tag := range uint32(n % 50) { // to make the batches differ in size
@@ -165,6 +165,13 @@ func testNumbered(t *testing.T, s *Store, n uint64) {
 				t.Fatalf("%s: %v in place %d", b.what, v, i)
 			}
 		}
+	}
+	var hours Hour
+	for _, h := range drain(t, s.Hours(1, 0, math.MaxInt64)) {
+		hours.Add(h)
+	}
+	if want := float64(n * (n + 1) / 2); uint64(hours.Minutes) != n || hours.Given != want {
+		t.Errorf("hours of %d minutes hold %v J, want %d and %v", hours.Minutes, hours.Given, n, want)
 	}
 	registers, err := s.Registers()
 	if want := float64(n * (n + 1) / 2); err != nil || len(registers) != 1 || registers[0].Given != want {

@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"maps"
 	"math"
-	"math/bits"
 	"slices"
 	"sort"
 
@@ -31,10 +30,10 @@ func (m *Minute) floats() [minuteFloats]*float64 {
 	}
 }
 
-// forerunner gives, for each float, the place of the one that it is likely to
-// resemble, or -1.
-var forerunner = [minuteFloats]int{-1, -1, -1, -1, -1, 4, 4, -1, -1, -1, 9, -1}
+// minuteLike tells of which floats of a minute are alike.
+var minuteLike = forerunners{-1, -1, -1, -1, -1, 4, 4, -1, -1, -1, 9, -1}
 
+// minuteKey is the key of a load's minute, and of its hour likewise.
 func minuteKey(start int64, load uint32) []byte {
 	return binary.BigEndian.AppendUint32(timeKey(start), load/loadsAKey)
 }
@@ -46,28 +45,10 @@ func timeKey(t int64) []byte { return binary.BigEndian.AppendUint64(nil, uint64(
 func appendMinutes(b []byte, key []byte, all []Minute) []byte {
 	begin := len(b)
 	for _, m := range all {
-		b = appendMinute(append(b, byte(m.Load%loadsAKey)), m)
+		fields := m.floats()
+		b = appendFloats(append(b, byte(m.Load%loadsAKey)), fields[:], minuteLike)
 	}
 	return binary.LittleEndian.AppendUint32(b, checksum(key, b[begin:]))
-}
-
-func appendMinute(b []byte, m Minute) []byte {
-	begin := len(b)
-	b = append(b, make([]byte, minuteFloats/2)...)
-	fields := m.floats()
-	for i, f := range fields {
-		word := math.Float64bits(*f)
-		if j := forerunner[i]; j >= 0 {
-			word ^= math.Float64bits(*fields[j])
-		}
-		count := 8 - bits.TrailingZeros64(word)/8
-		b[begin+i/2] |= byte(count) << (4 * (i % 2))
-		for ; count > 0; count-- {
-			b = append(b, byte(word>>56))
-			word <<= 8
-		}
-	}
-	return b
 }
 
 func anyLoad(uint32) bool { return true }
@@ -83,45 +64,19 @@ func parseMinutes(all []Minute, key, value []byte, want func(load uint32) bool) 
 	for p := (parser{rest: value[:n]}); len(p.rest) > 0; {
 		rest := p.take(1)[0]
 		load := block*loadsAKey + uint32(rest)
-		head := p.take(minuteFloats / 2)
-		size := 0
-		for _, c := range head {
-			size += int(c&15) + int(c>>4)
-		}
-		body := p.take(uint64(size))
+		counts, body := p.floats(minuteFloats)
 		if p.bad || rest >= loadsAKey || block > math.MaxUint32/loadsAKey {
 			return all, errRecord
 		}
 		if want(load) {
 			m := Minute{Load: load, Start: start}
-			if !m.parse(head, body) {
+			if fields := m.floats(); !parseFloats(counts, body, fields[:], minuteLike) {
 				return all, errRecord
 			}
 			all = append(all, m)
 		}
 	}
 	return all, nil
-}
-
-// parse reads the floats from their counts and bytes.
-func (m *Minute) parse(counts, body []byte) bool {
-	fields := m.floats()
-	for i, f := range fields {
-		count := int(counts[i/2] >> (4 * (i % 2)) & 15)
-		if count > 8 {
-			return false
-		}
-		var word uint64
-		for k, c := range body[:count] {
-			word |= uint64(c) << (56 - 8*k)
-		}
-		body = body[count:]
-		if j := forerunner[i]; j >= 0 {
-			word ^= math.Float64bits(*fields[j])
-		}
-		*f = math.Float64frombits(word)
-	}
-	return true
 }
 
 // putMinutes replaces the minutes of the same load and start.

@@ -109,6 +109,7 @@ func (m *model) compare(t *rapid.T, s *Store) {
 	if !sameMinutes(got, want) {
 		t.Fatalf("Minutes: %v\nwant %v", got, want)
 	}
+	m.compareHours(t, s)
 	registers, err := s.Registers()
 	var all []Register
 	for _, load := range slices.Sorted(maps.Keys(m.registers)) {

@@ -17,8 +17,12 @@ import (
 	berrors "go.etcd.io/bbolt/errors"
 )
 
-// Version is the layout that this package writes, and the only one it reads.
-const Version = 1
+// Version is the layout that this package writes. Open brings a file of the layout
+// before it, firstVersion, up to it.
+const (
+	Version      = 2
+	firstVersion = 1
+)
 
 var (
 	// ErrLocked says that another process has the file open.
@@ -42,8 +46,8 @@ const (
 	// pieceMargin is what the tails leave free of a quarter page each, which is
 	// the most that bbolt keeps inside another page. With it the root's page has
 	// room for three tails, the greatest inline registers, and the rest, which
-	// takes 583 bytes: 583 + 3·(P/4 − 192) + P/4 − 16 = P − 9.
-	pieceMargin = 192
+	// takes 661 bytes: 661 + 3·(P/4 − 218) + P/4 − 16 = P − 9.
+	pieceMargin = 218
 
 	fileMode = 0o600
 )
@@ -65,7 +69,7 @@ func open(path string, o Options) (*Store, error) {
 	if err := create(path); err != nil {
 		return nil, err
 	}
-	s := &Store{path: path, maxAge: o.MaxAge, maxBytes: o.MaxBytes, groupBytes: defaultGroup}
+	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, maxBytes: o.MaxBytes, groupBytes: defaultGroup}
 	if s.maxBytes <= 0 {
 		s.maxBytes = defaultBytes
 	}
@@ -85,6 +89,9 @@ func open(path string, o Options) (*Store, error) {
 		return nil, err
 	}
 	s.piece = s.db.Info().PageSize/4 - pieceMargin
+	if err := s.upgrade(log); err != nil {
+		return nil, errors.Join(err, s.db.Close())
+	}
 	err = s.view(func(tx *bolt.Tx) (err error) {
 		s.open, err = loadOpen(tx)
 		return err
@@ -192,15 +199,25 @@ func checkLayout(tx *bolt.Tx) error {
 		return fmt.Errorf("%w: it has no bucket %q, so it is not a history", ErrVersion, bucketMeta)
 	}
 	v := meta.Get(keyVersion)
-	if len(v) != 4 || binary.LittleEndian.Uint32(v) != Version {
-		return fmt.Errorf("%w: it is %s, this program reads version %d; use the program that wrote it", ErrVersion, versionText(v), Version)
+	version := versionOf(v)
+	if version < firstVersion || version > Version {
+		return fmt.Errorf("%w: it is %s, this program reads versions %d to %d; use the program that wrote it",
+			ErrVersion, versionText(v), firstVersion, Version)
 	}
-	for _, name := range buckets() {
+	for _, name := range buckets(version) {
 		if tx.Bucket(name) == nil {
 			return fmt.Errorf("%w: it has no bucket %q%s", ErrDamaged, name, advice)
 		}
 	}
 	return nil
+}
+
+// versionOf returns 0 for what is no version.
+func versionOf(v []byte) uint32 {
+	if len(v) != 4 {
+		return 0
+	}
+	return binary.LittleEndian.Uint32(v)
 }
 
 func versionText(v []byte) string {
@@ -210,10 +227,14 @@ func versionText(v []byte) string {
 	return fmt.Sprintf("version %d", binary.LittleEndian.Uint32(v))
 }
 
-func buckets() [][]byte {
+// buckets lists those of a layout version.
+func buckets(version uint32) [][]byte {
 	all := [][]byte{bucketMeta, bucketNames, bucketJournal, bucketRecent, bucketMinutes, bucketRegisters, bucketState}
 	for i := range tails {
 		all = append(all, bucketTail(i))
+	}
+	if version > firstVersion {
+		all = append(all, bucketHours)
 	}
 	return all
 }
@@ -245,14 +266,14 @@ func create(path string) error {
 }
 
 func layOut(tx *bolt.Tx) error {
-	for _, name := range buckets() {
+	for _, name := range buckets(Version) {
 		if _, err := tx.CreateBucket(name); err != nil {
 			return err
 		}
 	}
 	// A bucket that holds a bucket is never laid into the root's page, where
 	// these would take the room of the tails.
-	for _, name := range [][]byte{bucketNames, bucketMinutes, bucketState} {
+	for _, name := range [][]byte{bucketNames, bucketMinutes, bucketHours, bucketState} {
 		if _, err := tx.Bucket(name).CreateBucket(keyPlaceholder); err != nil {
 			return err
 		}
@@ -264,6 +285,9 @@ func layOut(tx *bolt.Tx) error {
 		return err
 	}
 	if err := putCheckpoint(tx, checkpoint{}); err != nil {
+		return err
+	}
+	if err := putHourMark(tx, unbuilt); err != nil {
 		return err
 	}
 	meta := tx.Bucket(bucketMeta)

@@ -20,11 +20,13 @@ var (
 	bucketJournal   = []byte("journal")
 	bucketRecent    = []byte("recent")
 	bucketMinutes   = []byte("minutes")
+	bucketHours     = []byte("hours")
 	bucketRegisters = []byte("registers")
 	bucketState     = []byte("state")
 
 	keyVersion    = []byte("version")
 	keyCreated    = []byte("created")
+	keyHours      = []byte("hours")
 	keyRecords    = []byte("r")
 	keyNames      = []byte("all")
 	keyRegisters  = []byte("all")
@@ -50,6 +52,8 @@ type Options struct {
 	// MaxAge is how long readings and minutes are kept; 0 keeps them until
 	// MaxBytes is reached.
 	MaxAge time.Duration
+	// MaxHourAge is how long hours are kept; 0 keeps them until MaxBytes is reached.
+	MaxHourAge time.Duration
 	// MaxBytes bounds the pages in use; 0 stands for 256 MiB. Trim keeps to it.
 	MaxBytes int64
 	// MaxFile bounds the file, which holds free pages as well. At this size
@@ -66,6 +70,7 @@ type Store struct {
 	db         *bolt.DB
 	path       string
 	maxAge     time.Duration
+	maxHourAge time.Duration
 	maxBytes   int64
 	piece      int // bytes that one tail bucket may hold
 	groupBytes int // size at which a group is closed
@@ -112,6 +117,9 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 		if err := putMinutes(tx, b.Minutes); err != nil {
 			return fmt.Errorf("minutes: %w", err)
 		}
+	}
+	if err := putHours(tx, b.Minutes); err != nil {
+		return fmt.Errorf("hours: %w", err)
 	}
 	if len(b.Registers) > 0 {
 		if err := putRegisters(tx, b.Registers); err != nil {

@@ -2,10 +2,10 @@ package store
 
 import (
 	"bytes"
-	"encoding/binary"
 	"errors"
 	"fmt"
 	"math"
+	"time"
 
 	bolt "go.etcd.io/bbolt"
 )
@@ -13,9 +13,9 @@ import (
 var errNothing = errors.New("nothing to remove")
 
 const (
-	// groupsATrim and minutesATrim bound what one transaction deletes.
-	groupsATrim  = 256
-	minutesATrim = 10_000
+	// groupsATrim and keysATrim bound what one transaction deletes.
+	groupsATrim = 256
+	keysATrim   = 10_000
 
 	// trimRoom is what the file may grow beyond its bound so that a deletion in
 	// a full file finds the few pages that it writes.
@@ -31,13 +31,15 @@ const (
 )
 
 // Trimmed says what retention has removed. Damaged counts the groups and the keys
-// of minutes that could not be read, so that it is not known what was in them.
-type Trimmed struct{ Readings, Minutes, Damaged int64 }
+// of minutes and hours that could not be read, so that it is not known what was in
+// them.
+type Trimmed struct{ Readings, Minutes, Hours, Damaged int64 }
 
-// Trim removes readings and minutes older than MaxAge before now (event time,
-// Unix nanoseconds), and, while more than MaxBytes are in use, the oldest
-// readings and after those the oldest minutes. Beats after the last checkpoint are
-// never removed, for a restart needs them, nor is any register. Readings go a
+// Trim removes readings and minutes older than MaxAge and hours older than
+// MaxHourAge before now (event time, Unix nanoseconds), and, while more than MaxBytes
+// are in use, the oldest readings, after those the oldest minutes, and last the
+// oldest hours. Beats after the last checkpoint are never removed, for a restart
+// needs them, nor the minutes of the newest hour, nor any register. Readings go a
 // group at a time, and the group that still grows stays: up to 48 KiB of them
 // may be kept longer than MaxAge. After a Commit that found no room, Trim makes
 // some, however much MaxBytes allows.
@@ -53,32 +55,44 @@ func (s *Store) Trim(now int64) (Trimmed, error) {
 		used := s.used.Load()
 		bound = min(bound, used-max(used/reliefShare, reliefBytes))
 	}
-	old := int64(math.MinInt64)
-	if s.maxAge > 0 {
-		old = now - int64(s.maxAge)
-	}
 	var t Trimmed
-	for _, remove := range []remover{s.trimGroups, s.trimMinutes} {
-		for more := true; more; {
-			done := t
-			err := s.update(func(tx *bolt.Tx) (err error) {
-				more, err = remove(tx, old, s.used.Load()-bound, &done)
-				if err == nil && done == t {
-					return errNothing // an empty transaction would write pages as well
-				}
-				return err
-			})
-			if err == errNothing {
-				break
-			}
-			if err != nil {
-				return t, fmt.Errorf("trim history %q: %w", s.path, err)
-			}
-			t = done
+	for _, of := range []struct {
+		remove remover
+		age    time.Duration
+	}{{s.trimGroups, s.maxAge}, {s.trimMinutes, s.maxAge}, {s.trimHours, s.maxHourAge}} {
+		old := int64(math.MinInt64)
+		if of.age > 0 {
+			old = now - int64(of.age)
+		}
+		if err := s.trim(of.remove, old, bound, &t); err != nil {
+			return t, fmt.Errorf("trim history %q: %w", s.path, err)
 		}
 	}
 	s.full = false
 	return t, nil
+}
+
+// trim calls remove as long as there is more to remove. t counts only what is
+// gone from the disk.
+func (s *Store) trim(remove remover, old, bound int64, t *Trimmed) error {
+	for more := true; more; {
+		done := *t
+		err := s.update(func(tx *bolt.Tx) (err error) {
+			more, err = remove(tx, old, s.used.Load()-bound, &done)
+			if err == nil && done == *t {
+				return errNothing // an empty transaction would write pages as well
+			}
+			return err
+		})
+		if err == errNothing {
+			return nil
+		}
+		if err != nil {
+			return err
+		}
+		*t = done
+	}
+	return nil
 }
 
 // remover removes some of what is older than old, or what is oldest while excess
@@ -133,33 +147,75 @@ func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old, excess int64) (na
 	return names
 }
 
-// trimMinutes removes minutes from the front.
+// trimMinutes removes minutes from the front, of hours that have been built.
 func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
-	over := excess > 0
-	if over {
-		excess += int64(s.db.Info().PageSize) // room comes by whole pages
+	mark, err := readHourMark(tx)
+	if err != nil {
+		return false, err
 	}
-	minutes := tx.Bucket(bucketMinutes)
-	var keys [][]byte
-	c := minutes.Cursor()
-	for k, v := c.Seek(keyFirstMinute); k != nil && len(keys) < minutesATrim; k, v = c.Next() {
-		start := int64(binary.BigEndian.Uint64(k) ^ 1<<63)
-		if start >= old && excess <= 0 {
-			break
-		}
-		excess -= int64(len(k) + len(v) + perKey)
-		keys = append(keys, bytes.Clone(k))
+	if err := advanceHours(tx, mark, keysATrim); err != nil {
+		return false, err
+	}
+	if mark, err = readHourMark(tx); err != nil {
+		return false, err
+	}
+	keys, more := s.oldest(tx.Bucket(bucketMinutes), old, excess, mark.built)
+	if len(keys) == 0 {
+		return false, nil
+	}
+	err = removeKeys(tx.Bucket(bucketMinutes), keys, func(k, v []byte) {
 		if all, err := parseMinutes(nil, k, v, anyLoad); err == nil {
 			t.Minutes += int64(len(all))
 		} else {
 			t.Damaged++
 		}
+	})
+	if err != nil {
+		return false, err
 	}
-	// Collected first, for a deletion moves what a cursor stands on.
+	mark.trimmed = max(mark.trimmed, hourAfter(hourOf(keyTime(keys[len(keys)-1]))))
+	return more, putHourMark(tx, mark)
+}
+
+// trimHours removes hours from the front.
+func (s *Store) trimHours(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
+	keys, more := s.oldest(tx.Bucket(bucketHours), old, excess, math.MaxInt64)
+	err = removeKeys(tx.Bucket(bucketHours), keys, func(k, v []byte) {
+		if all, err := parseHours(nil, k, v, anyLoad); err == nil {
+			t.Hours += int64(len(all))
+		} else {
+			t.Damaged++
+		}
+	})
+	return more, err
+}
+
+// oldest returns the keys at the front that begin before old, or make up the excess,
+// and in any case before end.
+func (s *Store) oldest(bucket *bolt.Bucket, old, excess, end int64) (keys [][]byte, more bool) {
+	over := excess > 0
+	if over {
+		excess += int64(s.db.Info().PageSize) // room comes by whole pages
+	}
+	c := bucket.Cursor()
+	for k, v := c.Seek(keyFirstMinute); k != nil && len(keys) < keysATrim; k, v = c.Next() {
+		if start := keyTime(k); start >= end || start >= old && excess <= 0 {
+			break
+		}
+		excess -= int64(len(k) + len(v) + perKey)
+		keys = append(keys, bytes.Clone(k))
+	}
+	return keys, len(keys) > 0 && (over || len(keys) == keysATrim)
+}
+
+// removeKeys removes keys, each after gone has seen it. They are not removed while
+// they are looked for, because a deletion moves what a cursor stands on.
+func removeKeys(bucket *bolt.Bucket, keys [][]byte, gone func(k, v []byte)) error {
 	for _, k := range keys {
-		if err := minutes.Delete(k); err != nil {
-			return false, err
+		gone(k, bucket.Get(k))
+		if err := bucket.Delete(k); err != nil {
+			return err
 		}
 	}
-	return len(keys) > 0 && (over || len(keys) == minutesATrim), nil
+	return nil
 }

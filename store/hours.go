@@ -1,0 +1,295 @@
+package store
+
+import (
+	"bytes"
+	"encoding/binary"
+	"fmt"
+	"iter"
+	"maps"
+	"math"
+	"slices"
+	"sort"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// keysAStep bounds how many keys of minutes one commit builds hours from, but for
+// the last of these hours. It does no more than one hour unless the file is an old one.
+const keysAStep = 2048
+
+// hourMark says which hours are kept as records: those that begin before built.
+// Later ones are told from their minutes. Of hours before trimmed, minutes may be gone.
+type hourMark struct{ built, trimmed int64 }
+
+var unbuilt = hourMark{math.MinInt64, math.MinInt64}
+
+func putHourMark(tx *bolt.Tx, m hourMark) error {
+	b := binary.LittleEndian.AppendUint64(nil, uint64(m.built))
+	b = binary.LittleEndian.AppendUint64(b, uint64(m.trimmed))
+	return tx.Bucket(bucketMeta).Put(keyHours, binary.LittleEndian.AppendUint32(b, checksum(keyHours, b)))
+}
+
+func readHourMark(tx *bolt.Tx) (hourMark, error) {
+	v := tx.Bucket(bucketMeta).Get(keyHours)
+	if len(v) != 20 || binary.LittleEndian.Uint32(v[16:]) != checksum(keyHours, v[:16]) {
+		return hourMark{}, fmt.Errorf("%w: mark of the hours: %w", ErrDamaged, errRecord)
+	}
+	return hourMark{int64(binary.LittleEndian.Uint64(v)), int64(binary.LittleEndian.Uint64(v[8:]))}, nil
+}
+
+// putHours keeps the hours up to date with their minutes, of which changed have just
+// been written: an hour that is over is built, one that was built before is
+// built anew.
+func putHours(tx *bolt.Tx, changed []Minute) error {
+	mark, err := readHourMark(tx)
+	if err != nil {
+		return err
+	}
+	late := map[int64]map[uint32]bool{}
+	for _, m := range changed {
+		if start := hourOf(m.Start); start < mark.built {
+			if late[start] == nil {
+				late[start] = map[uint32]bool{}
+			}
+			late[start][m.Load] = true
+		}
+	}
+	for _, start := range slices.Sorted(maps.Keys(late)) {
+		w := newHourWalk(tx, start)
+		if err := mark.put(tx, w.hour(func(load uint32) bool { return late[start][load] })); err != nil {
+			return err
+		}
+	}
+	return advanceHours(tx, mark, keysAStep)
+}
+
+// advanceHours builds hours that are over, from some keys or a few more.
+func advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
+	last, _ := tx.Bucket(bucketMinutes).Cursor().Last()
+	if len(last) != 12 {
+		return nil
+	}
+	end := hourOf(keyTime(last))
+	if end <= mark.built {
+		return nil
+	}
+	w := newHourWalk(tx, mark.built)
+	for w.keys < keys && w.key != nil && w.start() < end {
+		if err := mark.put(tx, w.hour(anyLoad)); err != nil {
+			return err
+		}
+	}
+	mark.built = end
+	if w.key != nil {
+		mark.built = w.start()
+	}
+	return putHourMark(tx, mark)
+}
+
+// hourWalk goes through minutes an hour at a time.
+type hourWalk struct {
+	cursor     *bolt.Cursor
+	key, value []byte // the first of the hour that comes; nil at the end
+	keys       int    // that have been passed
+	minutes    []Minute
+}
+
+func newHourWalk(tx *bolt.Tx, from int64) *hourWalk {
+	w := &hourWalk{cursor: tx.Bucket(bucketMinutes).Cursor()}
+	w.key, w.value = w.cursor.Seek(minuteKey(from, 0))
+	return w
+}
+
+func (w *hourWalk) start() int64 { return hourOf(keyTime(w.key)) }
+
+// hour adds up the next hour that has minutes, of the loads that are wanted, and
+// returns them by load. Minutes that cannot be read are not in it: they are told
+// by whoever reads them.
+func (w *hourWalk) hour(want func(load uint32) bool) []Hour {
+	if w.key == nil {
+		return nil
+	}
+	start := w.start()
+	sums := map[uint32]*hourSum{}
+	for w.key != nil && w.start() == start {
+		w.minutes, _ = parseMinutes(w.minutes[:0], w.key, w.value, want)
+		for i := range w.minutes {
+			m := &w.minutes[i]
+			if sums[m.Load] == nil {
+				sums[m.Load] = &hourSum{}
+			}
+			sums[m.Load].add(m)
+		}
+		w.key, w.value = w.cursor.Next()
+		w.keys++
+	}
+	hours := make([]Hour, 0, len(sums))
+	for _, load := range slices.Sorted(maps.Keys(sums)) {
+		hours = append(hours, sums[load].hour())
+	}
+	return hours
+}
+
+// put writes hours that have one start, sorted by load.
+func (mark hourMark) put(tx *bolt.Tx, hours []Hour) error {
+	bucket := tx.Bucket(bucketHours)
+	bucket.FillPercent = appendFill
+	for len(hours) > 0 {
+		key := minuteKey(hours[0].Start, hours[0].Load)
+		n := sort.Search(len(hours), func(i int) bool { return hours[i].Load/loadsAKey > hours[0].Load/loadsAKey })
+		all, err := mark.merge(bucket.Get(key), key, hours[:n])
+		if err != nil {
+			return err
+		}
+		if err := bucket.Put(key, appendHours(nil, key, all)); err != nil {
+			return err
+		}
+		hours = hours[n:]
+	}
+	return nil
+}
+
+// merge puts fresh hours among those that old holds. One that was built when more of
+// its minutes were there stays.
+func (mark hourMark) merge(old, key []byte, fresh []Hour) (all []Hour, err error) {
+	if old != nil {
+		if all, err = parseHours(nil, key, old, anyLoad); err != nil {
+			return nil, fmt.Errorf("%w: hour with key % x: %w", ErrDamaged, key, err)
+		}
+	}
+	for _, h := range fresh {
+		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= h.Load })
+		switch {
+		case i == len(all) || all[i].Load != h.Load:
+			all = slices.Insert(all, i, h)
+		case h.Start >= mark.trimmed || h.Minutes > all[i].Minutes:
+			all[i] = h
+		}
+	}
+	return all, nil
+}
+
+// Hours yields the hours of a load with from <= Start < to, by Start. The hours
+// that are not over yet, and those of a file of an older layout that are not
+// built yet, are added up from the minutes there are. The store may be written to
+// meanwhile. Damaged hours are told as an error and passed over unless the caller
+// stops.
+func (s *Store) Hours(load uint32, from, to int64) iter.Seq2[Hour, error] {
+	return func(yield func(Hour, error) bool) {
+		if hourOf(from) != from {
+			from = hourAfter(from)
+		}
+		var found []Hour
+		for from < to {
+			var faults []error
+			found, faults, from = s.hoursFrom(found[:0], from, to, load)
+			for _, h := range found {
+				if !yield(h, nil) {
+					return
+				}
+			}
+			for _, err := range faults {
+				if !yield(Hour{}, err) {
+					return
+				}
+			}
+		}
+	}
+}
+
+// hoursFrom adds some hours to found. next is where to go on, to or later at the end.
+func (s *Store) hoursFrom(found []Hour, from, to int64, load uint32) (all []Hour, faults []error, next int64) {
+	all, next = found, to
+	err := s.view(func(tx *bolt.Tx) error {
+		mark, err := readHourMark(tx)
+		switch {
+		case err != nil:
+			return fmt.Errorf("history %q: %w", s.path, err)
+		case from < mark.built:
+			all, faults, next = s.builtFrom(tx, all, from, min(to, mark.built), load)
+		default:
+			all, next = unbuiltFrom(tx, all, from, to, load)
+		}
+		return nil
+	})
+	if err != nil {
+		return all, append(faults, err), to
+	}
+	return all, faults, next
+}
+
+// builtFrom reads records of hours.
+func (s *Store) builtFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, faults []error, next int64) {
+	c := loadCursor{tx.Bucket(bucketHours).Cursor(), load / loadsAKey}
+	k, v := c.seek(from)
+	for range minutesAView {
+		if k == nil || keyTime(k) >= to {
+			return all, faults, to
+		}
+		var err error
+		if all, err = parseHours(all, k, v, func(l uint32) bool { return l == load }); err != nil {
+			faults = append(faults, s.damage("hours", k, err))
+		}
+		k, v = c.next()
+	}
+	if k == nil {
+		return all, faults, to
+	}
+	return all, faults, keyTime(k)
+}
+
+// unbuiltFrom adds up the next hour from its minutes.
+func unbuiltFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, next int64) {
+	c := loadCursor{tx.Bucket(bucketMinutes).Cursor(), load / loadsAKey}
+	k, v := c.seek(from)
+	if k == nil || hourOf(keyTime(k)) >= to {
+		return all, to
+	}
+	start := hourOf(keyTime(k))
+	var sum hourSum
+	var minutes []Minute
+	for k != nil && hourOf(keyTime(k)) == start {
+		minutes, _ = parseMinutes(minutes[:0], k, v, func(l uint32) bool { return l == load })
+		for i := range minutes {
+			sum.add(&minutes[i])
+		}
+		k, v = c.next()
+	}
+	if sum.Minutes > 0 {
+		all = append(all, sum.hour())
+	}
+	return all, hourAfter(start)
+}
+
+// keyTime is the instant in a key of minutes or hours.
+func keyTime(key []byte) int64 { return int64(binary.BigEndian.Uint64(key) ^ 1<<63) }
+
+// loadCursor goes through those keys of minutes or hours that hold one block of loads.
+type loadCursor struct {
+	*bolt.Cursor
+	block uint32
+}
+
+func (c loadCursor) seek(from int64) (k, v []byte) {
+	return c.settle(c.Seek(minuteKey(from, c.block*loadsAKey)))
+}
+
+func (c loadCursor) next() (k, v []byte) { return c.settle(c.Next()) }
+
+// settle goes on from k to the first key of the block.
+func (c loadCursor) settle(k, v []byte) ([]byte, []byte) {
+	for len(k) == 12 && binary.BigEndian.Uint32(k[8:]) != c.block {
+		at := keyTime(k)
+		if binary.BigEndian.Uint32(k[8:]) > c.block {
+			if at == math.MaxInt64 {
+				return nil, nil
+			}
+			at++
+		}
+		k, v = c.Seek(minuteKey(at, c.block*loadsAKey))
+	}
+	if bytes.Equal(k, keyPlaceholder) {
+		return nil, nil
+	}
+	return k, v
+}

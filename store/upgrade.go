@@ -1,0 +1,56 @@
+package store
+
+import (
+	"encoding/binary"
+	"fmt"
+	"log/slog"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// upgrade brings a file of the layout before to the present one. It adds what is
+// new and takes nothing away; the hours of its minutes are built by the commits
+// that follow, and told from the minutes until then.
+func (s *Store) upgrade(log *slog.Logger) error {
+	version, err := s.version()
+	if err != nil || version == Version {
+		return err
+	}
+	if err := s.update(func(tx *bolt.Tx) error { return upgradeTo(tx) }); err != nil {
+		return fmt.Errorf("bring it from layout version %d to %d: %w", version, Version, err)
+	}
+	log.Info("history has a new layout", "file", s.path, "before", version, "now", Version)
+	return nil
+}
+
+func (s *Store) version() (version uint32, err error) {
+	err = s.view(func(tx *bolt.Tx) error {
+		version = versionOf(tx.Bucket(bucketMeta).Get(keyVersion))
+		return nil
+	})
+	return version, err
+}
+
+func upgradeTo(tx *bolt.Tx) error {
+	// The tails make room in the root's page for the new buckets.
+	open, err := loadOpen(tx)
+	if err != nil {
+		return fmt.Errorf("%w: %w%s", ErrDamaged, err, advice)
+	}
+	if len(open.tail) > 0 {
+		if err := open.flush(tx); err != nil {
+			return err
+		}
+	}
+	hours, err := tx.CreateBucket(bucketHours)
+	if err != nil {
+		return err
+	}
+	if _, err := hours.CreateBucket(keyPlaceholder); err != nil {
+		return err
+	}
+	if err := putHourMark(tx, unbuilt); err != nil {
+		return err
+	}
+	return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version))
+}
