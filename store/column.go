@@ -1,0 +1,192 @@
+package store
+
+import (
+	"encoding/binary"
+	"math"
+)
+
+// column holds readings of one tag in the order in which they were committed.
+type column struct {
+	at      []int64
+	bits    []uint64
+	stamped []bool
+}
+
+func (c *column) add(r Reading) {
+	c.at = append(c.at, r.At)
+	c.bits = append(c.bits, math.Float64bits(r.Value))
+	c.stamped = append(c.stamped, r.Stamped)
+}
+
+// columnHead is what precedes the coded part of a column. All readings are at
+// start plus a whole number of ticks of 10^tick ns; values are those of the numbers
+// base plus a whole number of steps.
+type columnHead struct {
+	tick  int
+	start int64
+	form  form
+	k     int
+	base  int64
+	step  int64
+}
+
+// columnModel is what writer and reader of a column both know of it so far.
+type columnModel struct {
+	regular             [2]bit // whether nothing but the value is to be told
+	wasRegular          int
+	stampChange         [2]bit
+	wasStamped          int
+	times, values, offs numbers
+}
+
+// appendColumn writes c, whose block's first instant is origin.
+func appendColumn(b []byte, c *column, origin int64) []byte {
+	h, whole := c.head()
+	b = append(b, byte(h.tick), byte(h.form)<<4|byte(h.k))
+	b = appendInstant(b, h.start-origin)
+	b = binary.AppendUvarint(b, zigzag(h.base))
+	b = binary.AppendUvarint(b, uint64(h.step))
+	begin := len(b)
+	w := newBitWriter(b)
+	var m columnModel
+	var lastAt, lastGap, lastWhole int64
+	for i := range c.at {
+		at := (c.at[i] - h.start) / unitOf(h.tick)
+		gap := at - lastAt
+		stamped := 0
+		if c.stamped[i] {
+			stamped = 1
+		}
+		m.put(&w, gap-lastGap, stamped, h.off(whole[i], c.bits[i]))
+		n := whole[i] - h.base
+		if h.step != 0 {
+			n /= h.step
+		}
+		m.values.put(&w, n-lastWhole)
+		lastAt, lastGap, lastWhole = at, gap, n
+	}
+	return w.finish(begin)
+}
+
+// put writes what of a reading is not its value.
+func (m *columnModel) put(w *bitWriter, late int64, stamped int, off int64) {
+	regular := 0
+	if late != 0 || off != 0 || stamped != m.wasStamped {
+		regular = 1
+	}
+	w.put(regular, &m.regular[m.wasRegular])
+	m.wasRegular = regular
+	if regular == 0 {
+		return
+	}
+	m.times.put(w, late)
+	m.offs.put(w, off)
+	w.put(stamped^m.wasStamped, &m.stampChange[m.wasStamped])
+	m.wasStamped = stamped
+}
+
+func (m *columnModel) get(r *bitReader) (late, off int64) {
+	m.wasRegular = r.get(&m.regular[m.wasRegular])
+	if m.wasRegular == 0 {
+		return 0, 0
+	}
+	late, off = m.times.get(r), m.offs.get(r)
+	m.wasStamped ^= r.get(&m.stampChange[m.wasStamped])
+	return late, off
+}
+
+// off is how many floats a value lies beside that of its number.
+func (h *columnHead) off(n int64, b uint64) int64 {
+	if h.form == formBits {
+		return 0
+	}
+	return apart(h.form.value(n, h.k), b)
+}
+
+// head looks through the column for what its readings have in common, and returns the
+// number of each value.
+func (c *column) head() (h columnHead, whole []int64) {
+	h.start = c.at[0]
+	h.tick = maxDigits
+	for _, at := range c.at {
+		for (at-h.start)%unitOf(h.tick) != 0 {
+			h.tick--
+		}
+	}
+	h.form, h.k = formOf(c.bits)
+	whole = make([]int64, len(c.bits))
+	last := int64(0)
+	for i, b := range c.bits {
+		if h.form == formBits {
+			whole[i] = int64(ordered(b))
+			continue
+		}
+		if n, ok := h.form.whole(math.Float64frombits(b), h.k); ok {
+			last = n
+		}
+		whole[i] = last
+	}
+	h.base = whole[0]
+	if h.form == formBits {
+		h.step = 1
+		return h, whole
+	}
+	for _, n := range whole {
+		if h.step != 1 {
+			h.step = divisor(h.step, n-h.base)
+		}
+	}
+	return h, whole
+}
+
+// divisor is the greatest that a and b have in common; both are less than 2^54.
+func divisor(a, b int64) int64 {
+	for b != 0 {
+		a, b = b, a%b
+	}
+	return max(a, -a)
+}
+
+// unitOf is how many ns a tick has.
+func unitOf(tick int) int64 { return int64(tens[tick]) }
+
+// parseColumn yields the count readings of a column until yield returns false. It needs no
+// more memory however many they are. Bytes that no writer made give an error or
+// any readings, never a panic.
+func parseColumn(b []byte, count uint64, origin int64, tag uint32, yield func(Reading) bool) error {
+	p := parser{rest: b}
+	head := p.take(2)
+	if p.bad || head[0] > maxDigits || form(head[1]>>4) >= forms || head[1]&15 > maxDigits {
+		return errRecord
+	}
+	h := columnHead{tick: int(head[0]), form: form(head[1] >> 4), k: int(head[1] & 15)}
+	h.start = origin + p.instant()
+	h.base = unzigzag(p.uvarint())
+	h.step = int64(p.uvarint())
+	if p.bad {
+		return errRecord
+	}
+	r := newBitReader(p.rest)
+	var m columnModel
+	var at, gap, n int64
+	for range count {
+		late, off := m.get(&r)
+		gap += late
+		at += gap
+		n += m.values.get(&r)
+		reading := Reading{Tag: tag, At: h.start + at*unitOf(h.tick), Stamped: m.wasStamped != 0, Value: h.value(n, off)}
+		if !yield(reading) {
+			return nil
+		}
+	}
+	return nil
+}
+
+func (h *columnHead) value(n, off int64) float64 {
+	n = h.base + n*h.step
+	if h.form == formBits {
+		return math.Float64frombits(unordered(uint64(n)))
+	}
+	u := ordered(math.Float64bits(h.form.value(n, h.k)))
+	return math.Float64frombits(unordered(u + uint64(off)))
+}
