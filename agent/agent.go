@@ -13,6 +13,7 @@ import (
 	"fmt"
 	"log/slog"
 	"net"
+	"net/http"
 	"os"
 	"path/filepath"
 	"sync/atomic"
@@ -89,6 +90,9 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 		return err
 	}
 	defer func() { err = errors.Join(err, db.Close()) }()
+	if err := forgetAddress(a.o.Data); err != nil {
+		return err
+	}
 	books, err := openLedger(a.site, db, a.o.Log, time.Now())
 	if err != nil {
 		return err
@@ -97,12 +101,17 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err != nil {
 		return fmt.Errorf("listen on %q: %w", a.o.Listen, err)
 	}
-	return a.work(ctx, books, listener)
+	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name })})
+	if err := leaveAddress(a.o.Data, address{listener.Addr().String(), reports.run}); err != nil {
+		a.o.Log.Warn("reports will not find the agent while it runs", "error", err)
+	}
+	defer func() { err = errors.Join(err, forgetAddress(a.o.Data)) }()
+	return a.work(ctx, books, listener, reports)
 }
 
 // work runs the three parts. The session outlives the beat, so that the last
 // acknowledgements still go out.
-func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener) error {
+func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, reports http.Handler) error {
 	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
 	if a.o.Ready != nil {
 		a.o.Ready(listener.Addr())
@@ -115,7 +124,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener) 
 		defer endSession()
 		return a.beats(ctx, books)
 	})
-	g.Go(func() error { return serve(ctx, listener, handler(a.registry(), &a.health, a.o.Log)) })
+	g.Go(func() error { return serve(ctx, listener, handler(a.registry(), &a.health, reports, a.o.Log)) })
 	return g.Wait()
 }
 

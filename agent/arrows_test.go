@@ -38,7 +38,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water"},
+	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }

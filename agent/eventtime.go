@@ -23,6 +23,11 @@ func EventTime(data string) (t time.Time, err error) {
 		return time.Time{}, err
 	}
 	defer func() { err = errors.Join(err, db.Close()) }()
+	return eventTime(db)
+}
+
+// eventTime is how far the beats in db come, or the zero time where there are none.
+func eventTime(db *store.Store) (t time.Time, err error) {
 	for _, beats := range []func(func(store.Beat, error) bool){db.Before(time.Minute), db.Since()} {
 		for b, err := range beats {
 			if err != nil {

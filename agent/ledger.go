@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"log/slog"
 	"math"
+	"sync/atomic"
 	"time"
 
 	"heatreeve/agent/loads"
@@ -37,9 +38,10 @@ type ledger struct {
 	batch       store.Batch
 	waiting     int // readings in batch
 	committed   []view.Registers
-	saved       time.Time // of the last checkpoint
-	forced      bool      // the next commit must carry a checkpoint: the beats alone would not lead to the accounts
-	lost        uint64    // readings given up
+	through     atomic.Int64 // event time as last committed; for any goroutine
+	saved       time.Time    // of the last checkpoint
+	forced      bool         // the next commit must carry a checkpoint: the beats alone would not lead to the accounts
+	lost        uint64       // readings given up
 	lostMinutes uint64
 	failures    uint64
 	fault       string
@@ -51,6 +53,7 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 	if err != nil {
 		return nil, err
 	}
+	a.site, a.zone = s.Name, s.Zone.String()
 	l := &ledger{accounts: a, store: db, log: log, saved: now}
 	if l.tagIDs, err = db.IDs("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
 		return nil, err
@@ -273,6 +276,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 		l.saved, l.forced = now, false
 	}
 	l.committed, l.fault, l.waiting = registers, "", 0
+	l.through.Store(l.accounts.engine.Snapshot().Through)
 	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
 	return nil
 }

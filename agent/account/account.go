@@ -20,7 +20,7 @@ type Record struct {
 	Measured, Bridged int64
 	Given, Taken      float64 // J over the measured and bridged time, not below zero
 	Duty              float64 // mean over that time, W, positive in the load's service
-	Lowest, Highest   float64 // mean duty of the lowest and the highest minute in it, W
+	Lowest, Highest   float64 // least and greatest figure of the duty in it, W
 	Uncertainty       float64 // mean standard uncertainty of the duty over that time, W
 }
 
@@ -65,7 +65,7 @@ type Period struct {
 	// which is the safe side: what part of it is random would grow with the root of the
 	// time only.
 	Uncertainty     float64
-	Lowest, Highest Extreme // among the minutes; only where Covered
+	Lowest, Highest Extreme // only where Covered
 	Demand          Demand
 }
 
@@ -93,10 +93,10 @@ func (p *Period) Mean() (duty, uncertainty float64) {
 // Whole tells whether all of the period is accounted for.
 func (p *Period) Whole() bool { return p.From == p.Start && p.To == p.End }
 
-// Extreme is a mean duty over a short time, and when that began.
+// Extreme is a figure of the duty, and the bounds of the record that holds it.
 type Extreme struct {
-	Duty float64 // W
-	At   int64
+	Duty       float64 // W
+	Start, End int64
 }
 
 // Demand tells of the demand windows of a period: those of one length, aligned to

@@ -84,7 +84,7 @@ func TestRampOverALongDay(t *testing.T) {
 	if p.Measured != 25*hour || p.Missing != 0 || p.Taken != 0 || p.Coverage() != 1 || !p.Whole() {
 		t.Errorf("a day all measured: %+v", p)
 	}
-	if p.Lowest != (Extreme{0, from}) || p.Highest != (Extreme{d * (n - 1), from + (n-1)*minute}) {
+	if p.Lowest != (Extreme{0, from, from + minute}) || p.Highest != (Extreme{d * (n - 1), from + (n-1)*minute, from + n*minute}) {
 		t.Errorf("lowest %+v, highest %+v", p.Lowest, p.Highest)
 	}
 	near(t, "peak", p.Demand.Peak, d*(n-8), 1e-15) // the last quarter: the mean of n−15 to n−1
@@ -166,7 +166,6 @@ func TestWrongRecordsAreNotCounted(t *testing.T) {
 		{wrong(func(r *Record) { r.Start -= hour; r.End -= hour }), nil, "is before"},
 		{wrong(func(r *Record) { r.Start += 2 * hour; r.End += 2 * hour }), nil, "goes on after"},
 		{wrong(func(r *Record) { r.End += hour }), nil, "where the hour ends"},
-		{wrong(func(r *Record) { r.End += 20 * minute }), nil, "where the demand window of 15m0s ends"},
 		{Record{}, gone, "gone"},
 	} {
 		plan := Plan{From: from, To: from + 2*hour, Through: from + 2*hour, By: Hour, Zone: time.UTC, Demand: 15 * time.Minute}
@@ -362,7 +361,7 @@ func TestRecordsByTheHour(t *testing.T) {
 		}
 		hours = append(hours, h)
 	}
-	p := Plan{From: from, To: from + 49*hour, Through: from + 49*hour, By: Day, Zone: zone}
+	p := Plan{From: from, To: from + 49*hour, Through: from + 49*hour, By: Day, Zone: zone, Demand: 30 * time.Minute}
 	fine, coarse := collect(t, p, minutes), collect(t, p, hours)
 	if len(fine) != 2 || len(coarse) != 2 {
 		t.Fatalf("%d and %d days, want 2", len(fine), len(coarse))
@@ -372,6 +371,9 @@ func TestRecordsByTheHour(t *testing.T) {
 		near(t, "uncertainty by the hour", coarse[i].Uncertainty, fine[i].Uncertainty, 1e-14)
 		if coarse[i].Measured != fine[i].Measured || coarse[i].Highest.Duty != fine[i].Highest.Duty {
 			t.Errorf("by the hour %+v, by the minute %+v", coarse[i], fine[i])
+		}
+		if fine[i].Demand.Full != fine[i].Demand.Windows || coarse[i].Demand != (Demand{Windows: fine[i].Demand.Windows}) {
+			t.Errorf("half hours by the minute %+v, by the hour %+v; an hour does not tell them", fine[i].Demand, coarse[i].Demand)
 		}
 	}
 }

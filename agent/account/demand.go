@@ -1,7 +1,6 @@
 package account
 
 import (
-	"fmt"
 	"time"
 
 	"heatreeve/agent/loads"
@@ -14,19 +13,18 @@ type demandWindow struct {
 	served     loads.Sum
 }
 
-// demand adds r to its window, and settles the one before.
-func (f *fold) demand(r *Record) error {
+// demand adds r to its window, and settles the one before. A record that goes on after
+// the window does not tell what of it was in there.
+func (f *fold) demand(r *Record) {
 	w := &f.window
 	if r.Start >= w.end {
 		f.settle()
 		w.start, w.end = window(r.Start, int64(f.plan.Demand), f.plan.Zone)
 	}
-	if r.End > w.end {
-		return fmt.Errorf("record at %s: its %v go on after %s, where the demand window of %v ends", stamp(r.Start), time.Duration(r.End-r.Start), stamp(w.end), f.plan.Demand)
+	if r.End <= w.end {
+		w.covered += r.Measured + r.Bridged
+		w.served.Add(r.Duty * r.covered())
 	}
-	w.covered += r.Measured + r.Bridged
-	w.served.Add(r.Duty * r.covered())
-	return nil
 }
 
 // settle counts the window where it lies whole in the accounted time, and ends it.

@@ -25,9 +25,12 @@ func DemandLengths() []time.Duration {
 	return []time.Duration{5 * time.Minute, 10 * time.Minute, 15 * time.Minute, 20 * time.Minute, 30 * time.Minute, time.Hour}
 }
 
-// Until is where the account ends: To, or the last whole minute of event time
-// before it.
-func (p *Plan) Until() int64 { return min(p.To, p.Through-p.Through%minute) }
+// Accounted is the last whole minute that event time has come to: records of
+// the minute under way are not there yet.
+func (p *Plan) Accounted() int64 { return p.Through - p.Through%minute }
+
+// Until is where the account ends: at To, or where event time has come to before.
+func (p *Plan) Until() int64 { return min(p.To, p.Accounted()) }
 
 // Check tells what is wrong with the plan.
 func (p *Plan) Check() error {
@@ -50,9 +53,10 @@ func (p *Plan) stamp(t int64) string {
 // their order and without a gap; the first and the last may be there in part. Periods
 // without a record are all missing.
 //
-// Records must come in the order of time and each lie whole in one period and, with
-// Demand, in one window. What does not is yielded as an error and not counted, and so
-// is an error of records itself; the account goes on unless the caller stops.
+// Records must come in the order of time and each lie whole in one period. What does
+// not is yielded as an error and not counted, and so is an error of records itself; the
+// account goes on unless the caller stops. A record that does not lie whole in one
+// demand window covers none.
 func Periods(p Plan, records iter.Seq2[Record, error]) iter.Seq2[Period, error] {
 	return func(yield func(Period, error) bool) {
 		f := fold{plan: p, last: p.From}
@@ -118,9 +122,7 @@ func (f *fold) add(r *Record) error {
 		return fmt.Errorf("record at %s: its %v go on after %s, where the %s ends", stamp(r.Start), time.Duration(r.End-r.Start), stamp(p.End), f.plan.By)
 	}
 	if f.plan.Demand != 0 {
-		if err := f.demand(r); err != nil {
-			return err
-		}
+		f.demand(r)
 	}
 	f.last = r.End
 	s := r.covered()
@@ -128,10 +130,10 @@ func (f *fold) add(r *Record) error {
 		return nil
 	}
 	if !p.Covered() || r.Lowest < p.Lowest.Duty {
-		p.Lowest = Extreme{r.Lowest, r.Start}
+		p.Lowest = Extreme{r.Lowest, r.Start, r.End}
 	}
 	if !p.Covered() || r.Highest > p.Highest.Duty {
-		p.Highest = Extreme{r.Highest, r.Start}
+		p.Highest = Extreme{r.Highest, r.Start, r.End}
 	}
 	p.Measured += r.Measured
 	p.Bridged += r.Bridged

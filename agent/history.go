@@ -1,0 +1,186 @@
+package agent
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"maps"
+	"slices"
+	"strings"
+	"time"
+
+	"heatreeve/agent/account"
+	"heatreeve/store"
+	"heatreeve/thermo/unit/near"
+)
+
+// mostPeriods bounds the answer to a query: two years and more of hours of one load.
+const mostPeriods = 20_000
+
+// history is what reports are made from.
+type history struct {
+	db      *store.Store
+	site    string         // its name; may be empty
+	zone    *time.Location // of the site; nil where it is not known
+	through func() int64   // event time as committed
+	current []string       // loads that are accounted for now; others have been once
+}
+
+// report answers q, or gives up when ctx ends.
+func (h *history) report(ctx context.Context, q Query) (*Report, error) {
+	zone, err := q.place(h.zone)
+	if err != nil {
+		return nil, err
+	}
+	plan, err := q.plan(zone, h.through())
+	if err != nil {
+		return nil, err
+	}
+	ids, err := h.db.Names("load")
+	if err != nil {
+		return nil, err
+	}
+	chosen, err := choose(ids, q.Loads)
+	if err != nil {
+		return nil, err
+	}
+	at := func(ns int64) time.Time { return time.Unix(0, ns).In(zone) }
+	r := &Report{Site: h.site, Zone: zone.String(), By: plan.By.String(), From: at(plan.From), To: at(plan.To), Demand: plan.Demand.Seconds(), Accounted: at(plan.Accounted())}
+	if plan.From >= plan.Until() {
+		return nil, noRecord(r, chosen)
+	}
+	if err := h.fill(ctx, r, plan, ids, chosen, len(q.Loads) > 0); err != nil {
+		return nil, err
+	}
+	return r, h.addRegisters(r, ids, plan)
+}
+
+// fill puts the chosen loads into the report.
+func (h *history) fill(ctx context.Context, r *Report, plan account.Plan, ids map[string]uint32, chosen []string, byName bool) error {
+	periods := 0
+	for _, name := range chosen {
+		l, err := h.load(ctx, plan, name, ids[name], mostPeriods-periods)
+		if err != nil {
+			return err
+		}
+		r.Notes = append(r.Notes, l.notes...)
+		if l.worthTelling(byName || slices.Contains(h.current, name)) {
+			r.Loads = append(r.Loads, l.LoadReport)
+			periods += len(l.Periods)
+		}
+	}
+	if len(r.Loads) == 0 {
+		return noRecord(r, chosen)
+	}
+	return nil
+}
+
+// errNoRecord says that there is nothing to report.
+var errNoRecord = errors.New("the history holds no record")
+
+func noRecord(r *Report, chosen []string) error {
+	return fmt.Errorf("%w of %s from %s to %s; it goes up to %s",
+		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), wallClock(r.To), wallClock(r.Accounted))
+}
+
+func wallClock(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }
+
+// choose returns the wanted loads, or all, in the order in which they were first known.
+func choose(ids map[string]uint32, wanted []string) ([]string, error) {
+	known := slices.SortedFunc(maps.Keys(ids), func(a, b string) int { return int(ids[a]) - int(ids[b]) })
+	if len(known) == 0 {
+		return nil, errors.New("the history knows no load yet")
+	}
+	if len(wanted) == 0 {
+		return known, nil
+	}
+	for _, name := range wanted {
+		if _, ok := ids[name]; ok {
+			continue
+		}
+		if guess := near.Names(name, known); len(guess) > 0 {
+			return nil, queryErrorf("load %q is not in the history; did you mean %q?", name, guess[0])
+		}
+		return nil, queryErrorf("load %q is not in the history; there are: %s", name, strings.Join(known, ", "))
+	}
+	return slices.DeleteFunc(known, func(name string) bool { return !slices.Contains(wanted, name) }), nil
+}
+
+// loadAccount is a [LoadReport] in the making.
+type loadAccount struct {
+	LoadReport
+	begun bool // the load has a record from before the end of the report
+	notes []string
+}
+
+// worthTelling tells whether the load belongs in the report: one that has begun, and has
+// something measured, unless it is missing by name.
+func (l *loadAccount) worthTelling(byName bool) bool {
+	return l.begun && (byName || l.Total.Measured > 0)
+}
+
+// load adds up one load.
+func (h *history) load(ctx context.Context, plan account.Plan, name string, id uint32, most int) (l loadAccount, err error) {
+	l.Load = name
+	if l.begun, err = anyBefore(h.db, id, plan.From); err != nil {
+		return l, err
+	}
+	source, early := &records{db: h.db, load: id, plan: plan}, l.begun
+	var total account.Total
+	var faults []error
+	for p, err := range account.Periods(plan, source.all(ctx)) {
+		if err != nil {
+			faults = append(faults, err)
+			continue
+		}
+		total.Add(p)
+		if l.begun = l.begun || p.Covered(); !l.begun {
+			continue
+		}
+		if len(l.Periods) == most {
+			return l, queryErrorf("by %s there are more than %d periods; ask for a shorter time, longer periods or fewer loads", plan.By, mostPeriods)
+		}
+		l.Periods = append(l.Periods, periodReport(&p, &plan))
+	}
+	if source.err != nil {
+		return l, source.err
+	}
+	sum := total.Period()
+	l.Total = periodReport(&sum, &plan)
+	if !early && l.begun {
+		begins := time.Unix(0, source.begins()).In(plan.Zone)
+		l.Begins = &begins
+	}
+	l.note(source, faults)
+	return l, nil
+}
+
+// note adds what is remarkable about the records.
+func (l *loadAccount) note(source *records, faults []error) {
+	if len(faults) > 0 {
+		l.notes = append(l.notes, fmt.Sprintf("%s: %d records cannot be used and are missing; the first: %v", l.Load, len(faults), faults[0]))
+	}
+	if source.whole > 0 && source.plan.Demand != 0 {
+		l.notes = append(l.notes, fmt.Sprintf("%s: of %d hours not all minutes are left; their heat counts, their demand is not known", l.Load, source.whole))
+	}
+}
+
+// addRegisters puts the registers beside the sums where the report goes as far as the
+// history.
+func (h *history) addRegisters(r *Report, ids map[string]uint32, plan account.Plan) error {
+	if plan.To < plan.Accounted() {
+		return nil
+	}
+	all, err := h.db.Registers()
+	if err != nil {
+		return err
+	}
+	for i := range r.Loads {
+		for _, x := range all {
+			if x.Load == ids[r.Loads[i].Load] {
+				r.Loads[i].Register = registerOf(x)
+			}
+		}
+	}
+	return nil
+}

@@ -1,0 +1,147 @@
+package agent
+
+import (
+	"context"
+	"errors"
+	"iter"
+	"math"
+	"time"
+
+	"heatreeve/agent/account"
+	"heatreeve/store"
+)
+
+const (
+	minute = int64(time.Minute)
+	hour   = int64(time.Hour)
+)
+
+func hourOf(t int64) int64 { return t - t%hour }
+
+// records are those of one load that a plan asks for: hours where they serve, and
+// minutes otherwise.
+type records struct {
+	db    *store.Store
+	load  uint32
+	plan  account.Plan
+	first int64 // start of the first record yielded; 0 before
+	whole int   // hours yielded where minutes were asked for
+	err   error // why all ended before its time
+}
+
+// all yields the records once, in the order of time, and damaged ones as errors. It ends
+// with err when the store fails, or ctx ends.
+func (r *records) all(ctx context.Context) iter.Seq2[account.Record, error] {
+	return func(yield func(account.Record, error) bool) {
+		for h, err := range r.db.Hours(r.load, hourOf(r.plan.From), r.plan.Until()) {
+			switch {
+			case ctx.Err() != nil:
+				r.err = ctx.Err()
+				return
+			case err != nil && !errors.Is(err, store.ErrDamaged):
+				r.err = err
+				return
+			case err != nil:
+				if !yield(account.Record{}, err) {
+					return
+				}
+			case r.coarse(h):
+				if !r.tell(hourRecord(h), yield) {
+					return
+				}
+			case !r.minutes(h, yield):
+				return
+			}
+		}
+	}
+}
+
+// coarse tells whether the hour serves as it is: it lies whole in one period and in the
+// plan, and there are no shorter windows to tell.
+func (r *records) coarse(h store.Hour) bool {
+	if r.plan.Demand != 0 || h.Start < r.plan.From || h.Start+hour > r.plan.Until() {
+		return false
+	}
+	_, end := r.plan.By.Bounds(h.Start, r.plan.Zone)
+	return h.Start+hour <= end
+}
+
+// minutes yields those of the hour that the plan asks for. Where not all of them are there
+// any more, or can be read, the hour must do: it cannot be told apart, but its heat is
+// not to be lost.
+func (r *records) minutes(h store.Hour, yield func(account.Record, error) bool) bool {
+	found := make([]store.Minute, 0, 60)
+	for m, err := range r.db.Minutes(r.load, h.Start, h.Start+hour) {
+		if err == nil {
+			found = append(found, m)
+		} else if !errors.Is(err, store.ErrDamaged) {
+			r.err = err
+			return false
+		}
+	}
+	if len(found) < int(h.Minutes) {
+		r.whole++
+		return r.tell(hourRecord(h), yield)
+	}
+	for _, m := range found {
+		if m.Start >= r.plan.From && m.Start < r.plan.Until() && !r.tell(minuteRecord(m), yield) {
+			return false
+		}
+	}
+	return true
+}
+
+func (r *records) tell(x account.Record, yield func(account.Record, error) bool) bool {
+	if r.first == 0 {
+		r.first = x.Start
+	}
+	return yield(x, nil)
+}
+
+// begins is the start of the first minute there is, or of the first hour where its
+// minutes are not left.
+func (r *records) begins() int64 {
+	for m, err := range r.db.Minutes(r.load, r.first, r.first+hour) {
+		if err == nil {
+			return m.Start
+		}
+	}
+	return r.first
+}
+
+func minuteRecord(m store.Minute) account.Record {
+	return account.Record{
+		Start: m.Start, End: m.Start + minute, Measured: shortSpan(m.Measured),
+		Given: m.Given, Taken: m.Taken, Duty: m.Duty, Lowest: m.DutyMin, Highest: m.DutyMax, Uncertainty: m.DutyUncertainty,
+	}
+}
+
+func hourRecord(h store.Hour) account.Record {
+	r := account.Record{
+		Start: h.Start, End: h.Start + hour, Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged),
+		Given: h.Given, Taken: h.Taken, Duty: h.Duty, Lowest: h.DutyMin, Highest: h.DutyMax,
+	}
+	if h.Measured > 0 {
+		r.Uncertainty = h.HeatUncertainty / h.Measured
+	}
+	return r
+}
+
+// shortSpan is a short time in ns.
+func shortSpan(s float64) int64 { return int64(math.Round(s * 1e9)) }
+
+// anyBefore tells whether the load has a record of a minute that begins before the
+// instant to.
+func anyBefore(db *store.Store, load uint32, to int64) (bool, error) {
+	for _, err := range db.Hours(load, math.MinInt64, hourOf(to)) {
+		if err == nil || !errors.Is(err, store.ErrDamaged) {
+			return err == nil, err
+		}
+	}
+	for _, err := range db.Minutes(load, hourOf(to), to) {
+		if err == nil || !errors.Is(err, store.ErrDamaged) {
+			return err == nil, err
+		}
+	}
+	return false, nil
+}
