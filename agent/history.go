@@ -147,9 +147,9 @@ func (h *history) load(ctx context.Context, plan account.Plan, name string, id u
 	}
 	sum := total.Period()
 	l.Total = periodReport(&sum, &plan)
-	if !early && l.begun {
-		begins := time.Unix(0, source.begins()).In(plan.Zone)
-		l.Begins = &begins
+	if begins := source.begins(); !early && l.begun && begins > plan.From {
+		at := time.Unix(0, begins).In(plan.Zone)
+		l.Begins = &at
 	}
 	l.note(source, faults)
 	return l, nil
