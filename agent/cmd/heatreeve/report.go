@@ -1,0 +1,70 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"io"
+
+	"heatreeve/agent"
+)
+
+// reportHelp tells what a report needs and holds.
+const reportHelp = `The data folder may be that of an agent that runs: it is asked then, and goes on
+undisturbed. A copy of the history's file does as well. DATE is a day (2026-12-31)
+or a month (2026-12) by the clock of the plant, a local time (2026-12-31T06:00), or
+one with its offset to UTC (2026-12-31T06:00+01:00). --to is the end and not in the
+report any more; without it, the report goes as far as the history.
+
+Uncertainties are those of given less taken, as if the duty's were the same
+throughout: nothing of it averages out, within a period or between them. Table
+and csv show them twice the standard one; json is SI, and the standard one.
+Missing time has no heat in it. csv has no line of totals.
+`
+
+var formats = map[string]func(io.Writer, *agent.Report) error{
+	"table": reportTable,
+	"csv":   reportCSV,
+	"json":  func(w io.Writer, r *agent.Report) error { return printJSON(w, r) },
+}
+
+func runReport(ctx context.Context, c *call) error {
+	var q agent.Query
+	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
+	c.flags.StringVar(&q.From, "from", "", "`DATE` at which the report begins")
+	c.flags.StringVar(&q.To, "to", "", "`DATE` at which it ends")
+	c.flags.StringVar(&q.By, "by", "day", "periods: `hour|day|month`")
+	c.flags.Func("load", "`NAME` of a load; may be given again; without it, all", func(name string) error {
+		q.Loads = append(q.Loads, name)
+		return nil
+	})
+	c.flags.DurationVar(&q.Demand, "demand", 0, "show the peak demand over windows of `LENGTH`: 5m, 10m, 15m, 20m, 30m or 1h")
+	format := c.flags.String("format", "table", "`table|csv|json`")
+	c.flags.StringVar(&q.Zone, "zone", "", "IANA `NAME` of the time zone, such as Europe/Dublin; without it, that of the history or the site file")
+	file := c.flags.String("site", "", "site `FILE` whose time zone to go by")
+	if err := c.parse(0, ""); err != nil {
+		return err
+	}
+	if *data == "" || q.From == "" {
+		return wrongf("heatreeve report: --data and --from must be given; see heatreeve report --help")
+	}
+	write := formats[*format]
+	if write == nil {
+		return wrongf("heatreeve report: --format %q: allowed are table, csv, json", *format)
+	}
+	if *file != "" && q.Zone == "" {
+		s, err := load(*file)
+		if err != nil {
+			return err
+		}
+		q.Zone = s.Zone.String()
+	}
+	r, err := agent.Inquire(ctx, *data, q)
+	var wrong *agent.QueryError
+	switch {
+	case errors.As(err, &wrong):
+		return wrongf("heatreeve report: --%w", err)
+	case err != nil:
+		return err
+	}
+	return write(c.stdout, r)
+}

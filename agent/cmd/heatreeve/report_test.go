@@ -1,0 +1,411 @@
+package main
+
+import (
+	"bytes"
+	"context"
+	"encoding/csv"
+	"encoding/json"
+	"fmt"
+	"log/slog"
+	"math"
+	"net"
+	"os"
+	"path/filepath"
+	"slices"
+	"strconv"
+	"strings"
+	"sync"
+	"testing"
+	"time"
+	"unicode/utf8"
+
+	"heatreeve/agent"
+	"heatreeve/agent/demo"
+	"heatreeve/agent/site"
+	"heatreeve/configs"
+	"heatreeve/store"
+)
+
+// kept is where the README and the tests say that a plant keeps its history.
+const kept = "/var/lib/heatreeve"
+
+// keptFrom is where the history begins: local midnight of the day before the clock goes
+// back in Dublin. It ends 80 hours later.
+var keptFrom = time.Date(2026, 10, 23, 23, 0, 0, 0, time.UTC)
+
+const keptMinutes = 80 * 60
+
+// keep makes a data folder: one that the agent has run on, with what the demo's plant
+// moves in 80 hours. An hour of each morning is cut short by five minutes, and one night is
+// missing in the dryer's.
+func keep(t *testing.T) string {
+	t.Helper()
+	dir := t.TempDir()
+	s, err := site.Parse(configs.DemoName, configs.Demo)
+	if err != nil {
+		t.Fatal(err)
+	}
+	s.Broker.URL = "mqtt://127.0.0.1:1" // where nobody answers
+	ctx, cancel := context.WithCancel(t.Context())
+	a, err := agent.New(s, agent.Options{Data: dir, Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Ready: func(net.Addr) { cancel() }})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := a.Run(ctx); err != nil {
+		t.Fatal(err)
+	}
+	plant, err := demo.NewPlant(s, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	db, err := store.Open(filepath.Join(dir, agent.HistoryFile), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	ids, err := db.Names("load")
+	if err != nil {
+		t.Fatal(err)
+	}
+	b := store.Batch{Beats: []store.Beat{{Through: keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano()}}}
+	for k := range keptMinutes {
+		for i := range s.Loads {
+			if m, ok := keptMinute(t, plant, &s.Loads[i], k); ok {
+				m.Load = ids[s.Loads[i].Name]
+				b.Minutes = append(b.Minutes, m)
+			}
+		}
+	}
+	if err := db.Commit(b); err != nil {
+		t.Fatal(err)
+	}
+	return dir
+}
+
+// keptMinute is what a load moves in minute k, at 0.8 % of standard uncertainty.
+func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m store.Minute, ok bool) {
+	t.Helper()
+	at := keptFrom.Add(time.Duration(k) * time.Minute)
+	duty, err := plant.Duty(l.Name, (at.Sub(keptFrom)+(24*time.Hour-5*time.Hour-30*time.Minute))%(24*time.Hour))
+	if err != nil {
+		t.Fatal(err)
+	}
+	m = store.Minute{Start: at.UnixNano(), Measured: 60, Duty: duty, DutyMin: 0.99 * duty, DutyMax: 1.01 * duty, DutyUncertainty: 0.008 * duty}
+	if l.Stream.Gives {
+		m.Given = 60 * duty
+	} else {
+		m.Taken = 60 * duty
+	}
+	silent := k%1440 >= 500 && k%1440 < 505 || l.Name == "dryer-air" && k >= 1300 && k < 1900
+	return m, !silent
+}
+
+// inHistory has a command line about /var/lib/heatreeve run on what keep makes.
+func inHistory(t *testing.T, line []string) []string {
+	t.Helper()
+	if i := slices.Index(line, kept); i >= 0 {
+		line = slices.Clone(line)
+		line[i] = keep(t)
+	}
+	return line
+}
+
+func report(t *testing.T, args ...string) (status int, stdout, stderr string) {
+	t.Helper()
+	return invoke(append([]string{"report"}, args...)...)
+}
+
+// Tables keep within 100 columns whatever is asked for, the first with the least.
+func TestReportTable(t *testing.T) {
+	data := keep(t)
+	for _, tt := range []struct {
+		args string
+		want []string
+	}{
+		{"--from 2026-10-25 --to 2026-10-26 --load dryer-air --by hour", []string{
+			"Brackwater Creamery", "dryer-air, 2026-10-25 00:00 +01:00 to 2026-10-26 00:00 +00:00, Europe/Dublin",
+			"2026-10-25 01:00 +01:00 ", "2026-10-25 01:00 +00:00 ", "0 %  1:00:00", "\ntotal ", "Highest: the highest figure"}},
+		{"--from 2026-10-24T06:30 --by day --demand 15m", []string{
+			"hot-water, ", "chilled-glycol, ", "dryer-air, ", "2026-10-24 +01:00*", "2026-10-25 +01:00 ", "2026-10-27 +00:00*",
+			"* in part: 2026-10-24 06:30 +01:00 to 2026-10-25 00:00 +01:00", "* in part: 2026-10-27 00:00 +00:00 to 2026-10-27 07:00 +00:00",
+			"Registers at the last commit: 0 MWh given, 0 MWh taken.", "Peak: heat over time of the highest 15 min"}},
+		{"--from 2026-10 --to 2027-01 --by month --demand 1h", []string{"2026-10 +01:00*", "10-24 ", "The first record is of 2026-10-24 00:00 +01:00",
+			"The history is accounted for up to 2026-10-27 07:00 +00:00."}},
+		{"--from 2026-10-24 --by hour --demand 5m --zone Asia/Kolkata", []string{"2026-10-24 04:00 +05:30 ", "  0:30:00  ", "2026-10-27 12:00 +05:30*", "Asia/Kolkata"}},
+	} {
+		status, out, errs := report(t, append([]string{"--data", data}, strings.Fields(tt.args)...)...)
+		if status != exitGood || errs != "" {
+			t.Errorf("%s: status %d, %s", tt.args, status, errs)
+		}
+		for _, want := range append(tt.want, "no billing meter") {
+			if !strings.Contains(out, want) {
+				t.Errorf("%s: %q is not in\n%s", tt.args, want, out)
+			}
+		}
+		for line := range strings.Lines(out) {
+			if n := utf8.RuneCountInString(strings.TrimSuffix(line, "\n")); n > 100 {
+				t.Errorf("%s: %d columns: %s", tt.args, n, line)
+			}
+		}
+	}
+}
+
+// The csv has a record a period under its header, ends its lines as RFC 4180 says, and
+// adds up to the total that json tells.
+func TestReportCSVAgainstJSON(t *testing.T) {
+	data := keep(t)
+	args := []string{"--data", data, "--from", "2026-10-24", "--by", "hour", "--demand", "30m", "--format"}
+	status, text, errs := report(t, append(args, "csv")...)
+	if status != exitGood || strings.Count(text, "\r\n") != strings.Count(text, "\n") {
+		t.Fatalf("status %d, %s, %q", status, errs, text)
+	}
+	records, err := csv.NewReader(strings.NewReader(text)).ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, asJSON, _ := report(t, append(args, "json")...)
+	var r agent.Report
+	if err := json.Unmarshal([]byte(asJSON), &r); err != nil {
+		t.Fatal(err)
+	}
+	if len(records) != 1+3*80 || len(r.Loads) != 3 {
+		t.Fatalf("%d lines, %d loads; want a header and 80 hours of 3 loads", len(records), len(r.Loads))
+	}
+	column := func(name string) int {
+		i := slices.Index(records[0], name)
+		if i < 0 {
+			t.Fatalf("no column %q in %q", name, records[0])
+		}
+		return i
+	}
+	for _, l := range r.Loads {
+		for name, want := range map[string]float64{
+			"given_kWh": l.Total.Given / 3.6e6, "taken_kWh": l.Total.Taken / 3.6e6, "expanded_uncertainty_kWh": 2 * l.Total.Uncertainty / 3.6e6,
+			"measured_s": l.Total.Measured, "missing_s": l.Total.Missing, "bridged_s": 0,
+			"demand_windows": float64(l.Total.Demand.Windows), "demand_windows_covered_throughout": float64(l.Total.Demand.Full),
+		} {
+			sum := 0.0
+			for _, record := range records[1:] {
+				if record[0] == l.Load {
+					x, err := strconv.ParseFloat(record[column(name)], 64)
+					if err != nil {
+						t.Fatal(err)
+					}
+					sum += x
+				}
+			}
+			if math.Abs(sum-want) > 1e-12*math.Abs(want) {
+				t.Errorf("%s: %s adds up to %v, the total is %v", l.Load, name, sum, want)
+			}
+		}
+		if all := l.Total.Measured + l.Total.Missing; all != keptMinutes*60 {
+			t.Errorf("%s: %g s measured and missing, want %d", l.Load, all, keptMinutes*60)
+		}
+	}
+	empty := records[slices.IndexFunc(records, func(f []string) bool { return f[0] == "dryer-air" && f[column("coverage")] == "0" })]
+	for _, name := range []string{"mean_duty_kW", "lowest_start", "highest_duty_kW", "peak_demand_kW", "peak_demand_coverage"} {
+		if empty[column(name)] != "" {
+			t.Errorf("an hour without a record has %s %q", name, empty[column(name)])
+		}
+	}
+}
+
+func TestReportRefusals(t *testing.T) {
+	data, dir := keep(t), t.TempDir()
+	example := "../../../configs/brackwater-creamery.yaml"
+	for _, tt := range []struct {
+		args   string
+		status int
+		err    string
+	}{
+		{"", exitWrong, "--data and --from must be given"},
+		{"--data " + data, exitWrong, "--data and --from must be given"},
+		{"--data " + data + " --from 2026-10-24 extra", exitWrong, `unexpected "extra"`},
+		{"--data " + data + " --from 24.10.2026", exitWrong, `heatreeve report: --from "24.10.2026" is no date; write 2026-12-31`},
+		{"--data " + data + " --from 2026-10-25T01:30", exitWrong, `comes twice by the clock of Europe/Dublin, which goes back then; write 2026-10-25T01:30+01:00 or`},
+		{"--data " + data + " --from 2026-10-24 --to 2026-10-24", exitWrong, "--to 2026-10-24 is not after from 2026-10-24"},
+		{"--data " + data + " --from 2026-10-24 --by week", exitWrong, `--by "week": allowed are hour, day, month`},
+		{"--data " + data + " --from 2026-10-24 --demand 7m", exitWrong, "--demand 7m0s: allowed are 5m"},
+		{"--data " + data + " --from 2026-10-24 --demand soon", exitWrong, "soon"},
+		{"--data " + data + " --from 2026-10-24 --format xml", exitWrong, `--format "xml": allowed are table, csv, json`},
+		{"--data " + data + " --from 2026-10-24 --zone Dublin", exitWrong, `--zone "Dublin" is not known`},
+		{"--data " + data + " --from 2026-10-24 --load hot-watre", exitWrong, `--load "hot-watre" is not in the history; did you mean "hot-water"?`},
+		{"--data " + data + " --from 2026-10-24 --load x", exitWrong, "there are: hot-water, chilled-glycol, dryer-air"},
+		{"--data " + data + " --from 2026-12-01", exitFailed, "the history holds no record of hot-water, chilled-glycol, dryer-air from 2026-12-01 00:00 +00:00"},
+		{"--data " + data + " --from 2026-01-01 --to 2026-02-01", exitFailed, "it goes up to 2026-10-27 07:00 +00:00"},
+		{"--data " + data + " --from 2026-10-24 --site nowhere.yaml", exitWrong, "nowhere.yaml"},
+		{"--data " + data + " --from 2026-10-24 --site " + example, exitGood, ""},
+		{"--data " + dir + " --from 2026-10-24", exitFailed, "no history in"},
+		{"--data " + dir + "/nowhere --from 2026-10-24", exitFailed, "nowhere"},
+	} {
+		status, out, errs := report(t, strings.Fields(tt.args)...)
+		if status != tt.status || !strings.Contains(errs, tt.err) || (status == exitGood) != (out != "") {
+			t.Errorf("%s: status %d, said %q, printed %q; want %d, ...%q...", tt.args, status, errs, out, tt.status, tt.err)
+		}
+	}
+	db, err := store.Open(filepath.Join(data, agent.HistoryFile), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	if status, _, errs := report(t, "--data", data, "--from", "2026-10-24"); status != exitFailed || !strings.Contains(errs, "file is locked") || !strings.Contains(errs, "on a copy of the file") {
+		t.Errorf("a file that another program has open: status %d, %s", status, errs)
+	}
+}
+
+// heard is what a command prints while it runs.
+type heard struct {
+	mu   sync.Mutex
+	text bytes.Buffer
+}
+
+func (h *heard) Write(p []byte) (int, error) {
+	h.mu.Lock()
+	defer h.mu.Unlock()
+	return h.text.Write(p)
+}
+
+func (h *heard) String() string {
+	h.mu.Lock()
+	defer h.mu.Unlock()
+	return h.text.String()
+}
+
+// The report on a demo that runs comes from the agent, and after the end from the file;
+// what is over by then is the same in both.
+func TestReportWhileTheDemoRuns(t *testing.T) {
+	data := t.TempDir()
+	ctx, cancel := context.WithCancel(t.Context())
+	defer cancel()
+	var out, errs heard
+	ended := make(chan int, 1)
+	go func() {
+		ended <- run(ctx, []string{"demo", "--data", data, "--listen", "127.0.0.1:0", "--speed", "600"}, &out, &errs)
+	}()
+	args := []string{"--data", data, "--from", time.Now().AddDate(0, 0, -1).Format("2006-01-02"), "--by", "hour", "--demand", "5m", "--format", "json"}
+	live := awaitReport(t, ended, args)
+	if _, err := os.Stat(filepath.Join(data, "agent.address")); err != nil {
+		t.Errorf("while the agent runs: %v", err)
+	}
+	cancel()
+	if status := <-ended; status != exitGood {
+		t.Fatalf("demo: status %d, %s%s", status, &out, &errs)
+	}
+	if _, err := os.Stat(filepath.Join(data, "agent.address")); err == nil {
+		t.Error("the address of the agent is still there after its end")
+	}
+	status, text, said := report(t, args...)
+	var after agent.Report
+	if err := json.Unmarshal([]byte(text), &after); status != exitGood || err != nil {
+		t.Fatalf("after the end: status %d, %s, %v", status, said, err)
+	}
+	if after.Site != "Brackwater Creamery" || after.Zone != "Europe/Dublin" || after.Accounted.Before(live.Accounted) {
+		t.Errorf("after the end: %s, %s, up to %v; before it up to %v", after.Site, after.Zone, after.Accounted, live.Accounted)
+	}
+	sameWhereOver(t, live, &after)
+	for _, l := range after.Loads {
+		// The register holds the minute under way at the end as well.
+		g, sum := l.Register, l.Total
+		heat, time := g.Given+g.Taken-sum.Given-sum.Taken, g.Measured-sum.Measured
+		if heat < -1 || heat > 60*1e6 || time < 0 || time > 60 {
+			t.Errorf("%s: the registers are %g J and %g s above the sum", l.Load, heat, time)
+		}
+	}
+}
+
+// awaitReport asks until the report has an hour of all three loads that is over.
+func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
+	t.Helper()
+	ticker, deadline := time.NewTicker(100*time.Millisecond), time.After(60*time.Second)
+	defer ticker.Stop()
+	for {
+		select {
+		case status := <-ended:
+			t.Fatalf("the demo has ended with status %d", status)
+		case <-deadline:
+			_, text, errs := report(t, args...)
+			t.Fatalf("no report within 60 s: %s%s", text, errs)
+		case <-ticker.C:
+			status, text, _ := report(t, args...)
+			var r agent.Report
+			if status != exitGood || json.Unmarshal([]byte(text), &r) != nil || len(r.Loads) != 3 {
+				continue
+			}
+			if !slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return l.Periods[0].AccountedTo.Before(l.Periods[0].End) }) {
+				return &r
+			}
+		}
+	}
+}
+
+// sameWhereOver holds what a report says of hours that were over against a later one.
+func sameWhereOver(t *testing.T, before, after *agent.Report) {
+	t.Helper()
+	compared := 0
+	for i, l := range before.Loads {
+		for k, p := range l.Periods {
+			if p.AccountedTo.Before(p.End) {
+				continue
+			}
+			if got, want := fmt.Sprintf("%+v", flat(t, after.Loads[i].Periods[k])), fmt.Sprintf("%+v", flat(t, p)); got != want {
+				t.Errorf("%s: was\n%s\nis\n%s", l.Load, want, got)
+			}
+			compared++
+		}
+	}
+	if compared < 3 {
+		t.Errorf("only %d hours could be compared", compared)
+	}
+}
+
+func flat(t *testing.T, p agent.PeriodReport) string {
+	t.Helper()
+	b, err := json.Marshal(p)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(b)
+}
+
+// The keys that the README tells of the report's JSON are those that it has.
+func TestReadmeNamesTheReportKeys(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "The keys of its JSON: ")
+	list, _, closed := strings.Cut(rest, "\n\n")
+	if !ok || !closed {
+		t.Fatal("the README does not tell the keys of a report")
+	}
+	status, text, errs := report(t, "--data", keep(t), "--from", "2026-10-23T22:00Z", "--demand", "15m", "--format", "json")
+	if status != exitGood {
+		t.Fatal(errs)
+	}
+	var any map[string]any
+	if err := json.Unmarshal([]byte(text), &any); err != nil {
+		t.Fatal(err)
+	}
+	have := map[string]bool{"notes": true} // of a damaged history
+	gather(have, any)
+	for key := range have {
+		if !strings.Contains(list, "`"+key+"`") {
+			t.Errorf("the README does not tell of %q", key)
+		}
+	}
+	for i, key := range strings.Split(list, "`") {
+		if i%2 == 1 && !have[key] {
+			t.Errorf("the README tells of %q, which is not in the report", key)
+		}
+	}
+}
+
+func gather(keys map[string]bool, v any) {
+	switch v := v.(type) {
+	case map[string]any:
+		for key, x := range v {
+			keys[key] = true
+			gather(keys, x)
+		}
+	case []any:
+		for _, x := range v {
+			gather(keys, x)
+		}
+	}
+}

@@ -1,0 +1,205 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"slices"
+	"strings"
+	"text/tabwriter"
+	"time"
+
+	"heatreeve/agent"
+)
+
+const (
+	reportLegend = `±2u: twice the standard uncertainty of given less taken, as if systematic throughout.
+Missing time has no heat in it. Mean duty: over the covered time, positive in the load's service.
+`
+	highestLegend = "Highest: the highest figure of the duty; at: in the minute or the hour from then on.\n"
+	peakLegend    = "Peak: heat over time of the highest %.0f min by the local clock; of it: the covered part of that.\n"
+	reportSafety  = "For information only: no billing meter.\n"
+)
+
+// reportTable writes a table for each load, and below them what the columns are.
+func reportTable(w io.Writer, r *agent.Report) error {
+	if r.Site != "" {
+		fmt.Fprintf(w, "%s\n\n", r.Site)
+	}
+	for i := range r.Loads {
+		l := &r.Loads[i]
+		s := sheetOf(r, l)
+		fmt.Fprintf(w, "%s, %s to %s, %s\n\n%s", l.Load, clockTime(r.From), clockTime(r.To), r.Zone, s.table(l))
+		s.remark(w, l)
+		fmt.Fprintln(w)
+	}
+	for _, note := range r.Notes {
+		fmt.Fprintf(w, "note: %s\n", note)
+	}
+	if r.To.After(r.Accounted) {
+		fmt.Fprintf(w, "The history is accounted for up to %s.\n", clockTime(r.Accounted))
+	}
+	legend := highestLegend
+	if r.Demand != 0 {
+		legend = fmt.Sprintf(peakLegend, r.Demand/60)
+	}
+	_, err := fmt.Fprint(w, reportLegend, legend, reportSafety)
+	return err
+}
+
+func clockTime(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }
+
+// remark tells of a load what its table cannot.
+func (s *sheet) remark(w io.Writer, l *agent.LoadReport) {
+	for i := range l.Periods {
+		if p := &l.Periods[i]; inPart(p) {
+			fmt.Fprintf(w, "* in part: %s to %s\n", clockTime(p.AccountedFrom), clockTime(p.AccountedTo))
+		}
+	}
+	if l.Begins != nil {
+		fmt.Fprintf(w, "The first record is of %s; the time before is missing in the total.\n", clockTime(*l.Begins))
+	}
+	if g := l.Register; g != nil {
+		fmt.Fprintf(w, "Registers at the last commit: %s %s given, %s %s taken.\n", s.heatOf(g.Given), s.heat, s.heatOf(g.Taken), s.heat)
+	}
+}
+
+func inPart(p *agent.PeriodReport) bool {
+	return !p.AccountedFrom.Equal(p.Start) || !p.AccountedTo.Equal(p.End)
+}
+
+// sheet is the table of one load, with the units and decimals that it is written in.
+type sheet struct {
+	by            string
+	demand        bool
+	heat          string  // unit of the heats
+	energy        float64 // J in it
+	heats, duties int     // decimals
+}
+
+func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
+	s := &sheet{by: r.By, demand: r.Demand != 0, energy: 3.6e6, heat: "kWh"}
+	if max(l.Total.Given, l.Total.Taken) >= 36e9 {
+		s.energy, s.heat = 3.6e9, "MWh"
+	}
+	var heats, duties []float64
+	for _, p := range append(l.Periods, l.Total) {
+		if p.MeanU != nil && *p.MeanU > 0 {
+			heats, duties = append(heats, 2*p.Uncertainty/s.energy), append(duties, 2**p.MeanU/1e3)
+		}
+	}
+	s.heats, s.duties = places(heats, 3), places(duties, 2)
+	return s
+}
+
+func (s *sheet) table(l *agent.LoadReport) string {
+	t := newColumns(tabwriter.AlignRight)
+	s.head(t)
+	for i := range l.Periods {
+		p := &l.Periods[i]
+		s.line(t, s.name(p), p, s.by == "month")
+	}
+	s.line(t, "total", &l.Total, true)
+	var lines strings.Builder
+	for line := range strings.Lines(t.String()) {
+		lines.WriteString(strings.TrimPrefix(line, "  ")) // what parts columns stands before the first as well
+	}
+	return lines.String()
+}
+
+// places is how many decimals the middle one of the uncertainties asks for.
+func places(uncertainties []float64, most int) int {
+	if len(uncertainties) == 0 {
+		return 0
+	}
+	slices.Sort(uncertainties)
+	return min(most, max(0, meant(uncertainties[len(uncertainties)/2])))
+}
+
+// nameWidths is how wide the name of a period is, with a mark behind it.
+var nameWidths = map[string]int{"hour": 24, "day": 18, "month": 15}
+
+// pad keeps names of periods to the left in columns that keep to the right.
+func (s *sheet) pad(name string) string { return fmt.Sprintf("%-*s", nameWidths[s.by], name) }
+
+func (s *sheet) head(t *columns) {
+	first := []string{s.pad(s.by), "given", "taken", "±2u", "covered", "missing", "mean"}
+	second := []string{s.pad(""), s.heat, s.heat, s.heat, "", "h:mm:ss", "kW", "kW", "", ""}
+	if s.demand {
+		t.line(append(first, "peak", "of it", "at")...)
+		t.line(second...)
+		return
+	}
+	t.line(append(first, "highest", "at")...)
+	t.line(second[:9]...)
+}
+
+func (s *sheet) name(p *agent.PeriodReport) string {
+	layout := map[string]string{"hour": "2006-01-02 15:04 -07:00", "day": "2006-01-02 -07:00", "month": "2006-01 -07:00"}[s.by]
+	if inPart(p) {
+		layout += "*"
+	}
+	return p.Start.Format(layout)
+}
+
+func (s *sheet) line(t *columns, name string, p *agent.PeriodReport, long bool) {
+	mean := "-"
+	if p.Mean != nil {
+		mean = decimals(*p.Mean/1e3, s.duties)
+	}
+	cells := []string{s.pad(name), s.heatOf(p.Given), s.heatOf(p.Taken), s.heatOf(2 * p.Uncertainty), covered(p.Coverage), clockLength(p.Missing), mean}
+	switch {
+	case s.demand && p.Demand != nil && p.Demand.Peak != nil:
+		k := p.Demand.Peak
+		cells = append(cells, decimals(k.Duty/1e3, s.duties), covered(k.Coverage), s.moment(p, k.Start, long))
+	case s.demand:
+		cells = append(cells, "-", "", "")
+	case p.Highest != nil:
+		cells = append(cells, decimals(p.Highest.Duty/1e3, s.duties), s.moment(p, p.Highest.Start, long))
+	default:
+		cells = append(cells, "-", "")
+	}
+	t.line(cells...)
+}
+
+func (s *sheet) heatOf(joules float64) string {
+	if joules == 0 {
+		return "0"
+	}
+	return decimals(joules/s.energy, s.heats)
+}
+
+// moment tells when in a period something was: the time of day, with the date in long
+// ones, and the offset where it is not that of the period's beginning. Among hours it is
+// left out: the hour has it.
+func (s *sheet) moment(p *agent.PeriodReport, at time.Time, long bool) string {
+	layout := "15:04"
+	if long {
+		layout = "01-02 15:04"
+	}
+	_, offset := at.Zone()
+	if _, begins := p.Start.Zone(); begins != offset && s.by != "hour" {
+		layout += " -07:00"
+	}
+	return at.Format(layout)
+}
+
+// covered shows a coverage in percent, rounded away from both ends.
+func covered(x float64) string {
+	switch {
+	case x == 0 || x == 1:
+		return fmt.Sprintf("%.0f %%", 100*x)
+	case x < 0.001:
+		return "0.1 %"
+	}
+	return decimals(math.Floor(1000*x)/10, 1) + " %"
+}
+
+// clockLength shows s as hours, minutes and seconds.
+func clockLength(s float64) string {
+	n := int64(math.Round(s))
+	if n == 0 {
+		return "0"
+	}
+	return fmt.Sprintf("%d:%02d:%02d", n/3600, n/60%60, n%60)
+}
