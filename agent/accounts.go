@@ -19,11 +19,11 @@ const wholeMinute = 54 * time.Second
 type accounts struct {
 	cfg    loads.Config
 	rules  [32]byte
-	site   string // its name
-	zone   string // of its reports
 	engine *loads.Engine
 	judges []*design.Judge
 	closed []loads.Minute
+
+	site, zone string // name of the plant, and time zone of its reports
 }
 
 // newAccounts returns empty accounts of the plant that the site file with the digest
@@ -58,10 +58,11 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 // savedAccounts is the state of engine and judges; judges by the name of their
 // load.
 type savedAccounts struct {
-	Rules      [32]byte // that the accounts were kept by; see rulesOf
-	Site, Zone string   // its name, and the time zone of its reports
-	Engine     []byte
-	Judges     map[string]savedJudge
+	Rules  [32]byte // that the accounts were kept by; see rulesOf
+	Engine []byte
+	Judges map[string]savedJudge
+
+	Site, Zone string // name of the plant, and time zone of its reports
 }
 
 type savedJudge struct {
@@ -75,10 +76,11 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Rules: a.rules, Site: a.site, Zone: a.zone, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
+	s := savedAccounts{Rules: a.rules, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
 	}
+	s.Site, s.Zone = a.site, a.zone
 	var buf bytes.Buffer
 	if err := gob.NewEncoder(&buf).Encode(s); err != nil {
 		return nil, fmt.Errorf("save verdicts: %w", err)
