@@ -14,8 +14,9 @@ import (
 	"heatreeve/thermo/unit/near"
 )
 
-// mostPeriods bounds the answer to a query: two years and more of hours of one load.
-const mostPeriods = 20_000
+// mostPeriods bounds the answer to a query, and with it the memory that it takes: a year of
+// hours of one load, or a month of hours of sixteen.
+const mostPeriods = 12_000
 
 // history is what reports are made from.
 type history struct {

@@ -38,6 +38,8 @@ func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	}
 	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
 	defer cancel()
+	// Longer than other answers may take; where it cannot be set, there is no bound.
+	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(reportTime + 20*time.Second))
 	report, err := s.answer(ctx, q)
 	var wrong *QueryError
 	switch {

@@ -292,7 +292,7 @@ func TestReportIsBounded(t *testing.T) {
 	h.through = func() int64 { return week.Add(3 * 365 * 24 * time.Hour).UnixNano() }
 	_, err := h.report(t.Context(), Query{From: "2026-10-01", By: "hour"})
 	var wrong *QueryError
-	if !errors.As(err, &wrong) || !strings.Contains(err.Error(), "by hour there are more than 20000 periods") {
+	if !errors.As(err, &wrong) || !strings.Contains(err.Error(), "by hour there are more than 12000 periods") {
 		t.Errorf("three years by the hour: %v", err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
