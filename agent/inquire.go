@@ -56,7 +56,7 @@ func Inquire(ctx context.Context, data string, q Query) (*Report, error) {
 // silentFor says why no agent could be asked.
 func silentFor(silence error, data string) error {
 	if silence == nil {
-		return fmt.Errorf("no %s in %q tells where it answers", addressFile, filepath.Dir(filepath.Join(data, HistoryFile)))
+		return fmt.Errorf("no %s in %q tells where it answers", addressFile, data)
 	}
 	return silence
 }

@@ -1,119 +1,19 @@
 package main
 
 import (
-	"bytes"
-	"context"
 	"encoding/csv"
 	"encoding/json"
-	"fmt"
-	"log/slog"
 	"math"
-	"net"
-	"os"
 	"path/filepath"
 	"slices"
 	"strconv"
 	"strings"
-	"sync"
 	"testing"
-	"time"
 	"unicode/utf8"
 
 	"heatreeve/agent"
-	"heatreeve/agent/demo"
-	"heatreeve/agent/site"
-	"heatreeve/configs"
 	"heatreeve/store"
 )
-
-// kept is where the README and the tests say that a plant keeps its history.
-const kept = "/var/lib/heatreeve"
-
-// keptFrom is where the history begins: local midnight of the day before the clock goes
-// back in Dublin. It ends 80 hours later.
-var keptFrom = time.Date(2026, 10, 23, 23, 0, 0, 0, time.UTC)
-
-const keptMinutes = 80 * 60
-
-// keep makes a data folder: one that the agent has run on, with what the demo's plant
-// moves in 80 hours. An hour of each morning is cut short by five minutes, and one night is
-// missing in the dryer's.
-func keep(t *testing.T) string {
-	t.Helper()
-	dir := t.TempDir()
-	s, err := site.Parse(configs.DemoName, configs.Demo)
-	if err != nil {
-		t.Fatal(err)
-	}
-	s.Broker.URL = "mqtt://127.0.0.1:1" // where nobody answers
-	ctx, cancel := context.WithCancel(t.Context())
-	a, err := agent.New(s, agent.Options{Data: dir, Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Ready: func(net.Addr) { cancel() }})
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := a.Run(ctx); err != nil {
-		t.Fatal(err)
-	}
-	plant, err := demo.NewPlant(s, 1)
-	if err != nil {
-		t.Fatal(err)
-	}
-	db, err := store.Open(filepath.Join(dir, agent.HistoryFile), store.Options{})
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer db.Close()
-	ids, err := db.Names("load")
-	if err != nil {
-		t.Fatal(err)
-	}
-	b := store.Batch{Beats: []store.Beat{{Through: keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano()}}}
-	for k := range keptMinutes {
-		for i := range s.Loads {
-			if m, ok := keptMinute(t, plant, &s.Loads[i], k); ok {
-				m.Load = ids[s.Loads[i].Name]
-				b.Minutes = append(b.Minutes, m)
-			}
-		}
-	}
-	if err := db.Commit(b); err != nil {
-		t.Fatal(err)
-	}
-	return dir
-}
-
-// keptMinute is what a load moves in minute k, at 0.8 % of standard uncertainty.
-func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m store.Minute, ok bool) {
-	t.Helper()
-	at := keptFrom.Add(time.Duration(k) * time.Minute)
-	duty, err := plant.Duty(l.Name, (at.Sub(keptFrom)+(24*time.Hour-5*time.Hour-30*time.Minute))%(24*time.Hour))
-	if err != nil {
-		t.Fatal(err)
-	}
-	m = store.Minute{Start: at.UnixNano(), Measured: 60, Duty: duty, DutyMin: 0.99 * duty, DutyMax: 1.01 * duty, DutyUncertainty: 0.008 * duty}
-	if l.Stream.Gives {
-		m.Given = 60 * duty
-	} else {
-		m.Taken = 60 * duty
-	}
-	silent := k%1440 >= 500 && k%1440 < 505 || l.Name == "dryer-air" && k >= 1300 && k < 1900
-	return m, !silent
-}
-
-// inHistory has a command line about /var/lib/heatreeve run on what keep makes.
-func inHistory(t *testing.T, line []string) []string {
-	t.Helper()
-	if i := slices.Index(line, kept); i >= 0 {
-		line = slices.Clone(line)
-		line[i] = keep(t)
-	}
-	return line
-}
-
-func report(t *testing.T, args ...string) (status int, stdout, stderr string) {
-	t.Helper()
-	return invoke(append([]string{"report"}, args...)...)
-}
 
 // Tables keep within 100 columns whatever is asked for, the first with the least.
 func TestReportTable(t *testing.T) {
@@ -251,120 +151,6 @@ func TestReportRefusals(t *testing.T) {
 	if status, _, errs := report(t, "--data", data, "--from", "2026-10-24"); status != exitFailed || !strings.Contains(errs, "file is locked") || !strings.Contains(errs, "on a copy of the file") {
 		t.Errorf("a file that another program has open: status %d, %s", status, errs)
 	}
-}
-
-// heard is what a command prints while it runs.
-type heard struct {
-	mu   sync.Mutex
-	text bytes.Buffer
-}
-
-func (h *heard) Write(p []byte) (int, error) {
-	h.mu.Lock()
-	defer h.mu.Unlock()
-	return h.text.Write(p)
-}
-
-func (h *heard) String() string {
-	h.mu.Lock()
-	defer h.mu.Unlock()
-	return h.text.String()
-}
-
-// The report on a demo that runs comes from the agent, and after the end from the file;
-// what is over by then is the same in both.
-func TestReportWhileTheDemoRuns(t *testing.T) {
-	data := t.TempDir()
-	ctx, cancel := context.WithCancel(t.Context())
-	defer cancel()
-	var out, errs heard
-	ended := make(chan int, 1)
-	go func() {
-		ended <- run(ctx, []string{"demo", "--data", data, "--listen", "127.0.0.1:0", "--speed", "600"}, &out, &errs)
-	}()
-	args := []string{"--data", data, "--from", time.Now().AddDate(0, 0, -1).Format("2006-01-02"), "--by", "hour", "--demand", "5m", "--format", "json"}
-	live := awaitReport(t, ended, args)
-	if _, err := os.Stat(filepath.Join(data, "agent.address")); err != nil {
-		t.Errorf("while the agent runs: %v", err)
-	}
-	cancel()
-	if status := <-ended; status != exitGood {
-		t.Fatalf("demo: status %d, %s%s", status, &out, &errs)
-	}
-	if _, err := os.Stat(filepath.Join(data, "agent.address")); err == nil {
-		t.Error("the address of the agent is still there after its end")
-	}
-	status, text, said := report(t, args...)
-	var after agent.Report
-	if err := json.Unmarshal([]byte(text), &after); status != exitGood || err != nil {
-		t.Fatalf("after the end: status %d, %s, %v", status, said, err)
-	}
-	if after.Site != "Brackwater Creamery" || after.Zone != "Europe/Dublin" || after.Accounted.Before(live.Accounted) {
-		t.Errorf("after the end: %s, %s, up to %v; before it up to %v", after.Site, after.Zone, after.Accounted, live.Accounted)
-	}
-	sameWhereOver(t, live, &after)
-	for _, l := range after.Loads {
-		// The register holds the minute under way at the end as well.
-		g, sum := l.Register, l.Total
-		heat, time := g.Given+g.Taken-sum.Given-sum.Taken, g.Measured-sum.Measured
-		if heat < -1 || heat > 60*1e6 || time < 0 || time > 60 {
-			t.Errorf("%s: the registers are %g J and %g s above the sum", l.Load, heat, time)
-		}
-	}
-}
-
-// awaitReport asks until the report has an hour of all three loads that is over.
-func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
-	t.Helper()
-	ticker, deadline := time.NewTicker(100*time.Millisecond), time.After(60*time.Second)
-	defer ticker.Stop()
-	for {
-		select {
-		case status := <-ended:
-			t.Fatalf("the demo has ended with status %d", status)
-		case <-deadline:
-			_, text, errs := report(t, args...)
-			t.Fatalf("no report within 60 s: %s%s", text, errs)
-		case <-ticker.C:
-			status, text, _ := report(t, args...)
-			var r agent.Report
-			if status != exitGood || json.Unmarshal([]byte(text), &r) != nil || len(r.Loads) != 3 {
-				continue
-			}
-			if !slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return l.Periods[0].AccountedTo.Before(l.Periods[0].End) }) {
-				return &r
-			}
-		}
-	}
-}
-
-// sameWhereOver holds what a report says of hours that were over against a later one.
-func sameWhereOver(t *testing.T, before, after *agent.Report) {
-	t.Helper()
-	compared := 0
-	for i, l := range before.Loads {
-		for k, p := range l.Periods {
-			if p.AccountedTo.Before(p.End) {
-				continue
-			}
-			if got, want := fmt.Sprintf("%+v", flat(t, after.Loads[i].Periods[k])), fmt.Sprintf("%+v", flat(t, p)); got != want {
-				t.Errorf("%s: was\n%s\nis\n%s", l.Load, want, got)
-			}
-			compared++
-		}
-	}
-	if compared < 3 {
-		t.Errorf("only %d hours could be compared", compared)
-	}
-}
-
-func flat(t *testing.T, p agent.PeriodReport) string {
-	t.Helper()
-	b, err := json.Marshal(p)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return string(b)
 }
 
 // The keys that the README tells of the report's JSON are those that it has.

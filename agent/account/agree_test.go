@@ -1,0 +1,183 @@
+package account
+
+import (
+	"math"
+	"math/big"
+	"slices"
+	"testing"
+	"time"
+
+	"pgregory.net/rapid"
+)
+
+// history draws minutes of some days around a change of the clock, with gaps.
+func history(t *rapid.T) (p Plan, records []Record) {
+	zone := place(t, rapid.SampledFrom(zones).Draw(t, "zone"))
+	from := rapid.SampledFrom([]string{"2026-03-07T12:00Z", "2026-03-27T22:00Z", "2026-04-03T00:00Z", "2026-10-02T09:00Z", "2026-10-23T20:00Z", "2026-10-30T12:00Z"}).Draw(t, "from")
+	p = Plan{From: at(t, from) + rapid.Int64Range(0, 1500).Draw(t, "later")*minute, By: Hour, Zone: zone}
+	p.To = p.From + rapid.Int64Range(1, 5*1440).Draw(t, "span")*minute
+	p.Through = p.To + rapid.Int64Range(-2000, 10).Draw(t, "through")*minute
+	p.Demand = rapid.SampledFrom(append(DemandLengths(), 0)).Draw(t, "demand")
+	step := rapid.Int64Range(1, 40).Draw(t, "step")
+	random := uint64(rapid.Uint32().Draw(t, "seed"))
+	for x := p.From; x < p.Until(); x += minute {
+		random = random*6364136223846793005 + 1442695040888963407 // Knuth's MMIX
+		if a := int64(random >> 33); a%step < 3 {
+			r := record(x, float64(a%2_000_003)-500e3, float64(a%9973), 1+a%60)
+			records = append(records, r)
+		}
+	}
+	return p, records
+}
+
+// exact adds without rounding.
+func exact(records []Record, of func(*Record) float64) float64 {
+	sum := new(big.Float).SetPrec(2000)
+	for i := range records {
+		sum.Add(sum, new(big.Float).SetFloat64(of(&records[i])))
+	}
+	out, _ := sum.Float64()
+	return out
+}
+
+// Hours add up to days and days to months; times to the nanosecond, heats to the
+// rounding of the last bits, and to what the records hold.
+func TestAccountsOfAllKindsAgree(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		p, records := history(t)
+		totals := make(map[By]Period)
+		for _, by := range Kinds() {
+			p.By = by
+			var total Total
+			end := p.From
+			for _, x := range collect(t, p, records) {
+				if x.From != end || x.To <= x.From || x.Measured+x.Bridged+x.Missing != x.To-x.From || x.Missing < 0 {
+					t.Fatalf("%v after %s: %+v", by, stamp(end), x)
+				}
+				end = x.To
+				total.Add(x)
+			}
+			if end != max(p.From, p.Until()) {
+				t.Fatalf("%v: ends at %s, want %s", by, stamp(end), stamp(p.Until()))
+			}
+			totals[by] = total.Period()
+		}
+		for _, by := range Kinds() {
+			checkTotal(t, by, totals[by], totals[Month], records)
+		}
+	})
+}
+
+func checkTotal(t *rapid.T, by By, got, month Period, records []Record) {
+	for _, f := range []struct {
+		what string
+		got  float64
+		of   func(*Record) float64
+	}{
+		{"given", got.Given, func(r *Record) float64 { return r.Given }},
+		{"taken", got.Taken, func(r *Record) float64 { return r.Taken }},
+		{"served", got.Served, func(r *Record) float64 { return r.Duty * r.covered() }},
+		{"uncertainty", got.Uncertainty, func(r *Record) float64 { return r.Uncertainty * r.covered() }},
+	} {
+		want := exact(records, f.of)
+		scale := exact(records, func(r *Record) float64 { return math.Abs(f.of(r)) })
+		if math.Abs(f.got-want) > 1e-14*scale {
+			t.Fatalf("by %v: %s %.17g, the records hold %.17g", by, f.what, f.got, want)
+		}
+	}
+	got.Given, got.Taken, got.Served, got.Uncertainty = month.Given, month.Taken, month.Served, month.Uncertainty
+	got.Start, got.End = month.Start, month.End
+	if got != month {
+		t.Fatalf("by %v: %+v,\nby month: %+v", by, got, month)
+	}
+}
+
+// The demand of each window against a second way to find it: by what a wall clock
+// shows at each minute.
+func TestDemandByTheWallClock(t *testing.T) {
+	type mark struct {
+		shown  string
+		number int
+	}
+	rapid.Check(t, func(t *rapid.T) {
+		p, records := history(t)
+		p.Demand = rapid.SampledFrom(DemandLengths()).Draw(t, "length")
+		wall := func(x int64) mark {
+			at := time.Unix(0, x).In(p.Zone)
+			return mark{at.Format("2006-01-02 15 -07:00"), at.Minute() / int(p.Demand/time.Minute)}
+		}
+		minutes := make(map[mark]int64)
+		served, covered := make(map[mark]float64), make(map[mark]int64)
+		for x := p.From; x < p.Until(); x += minute {
+			minutes[wall(x)]++
+		}
+		if p.Until() > p.From { // the windows at both ends may be cut
+			for x := p.From - minute; wall(x) == wall(p.From); x -= minute {
+				delete(minutes, wall(x))
+			}
+			if wall(p.Until()) == wall(p.Until()-minute) {
+				delete(minutes, wall(p.Until()))
+			}
+		}
+		for i := range records {
+			if m := wall(records[i].Start); minutes[m] > 0 {
+				served[m] += records[i].Duty * records[i].covered()
+				covered[m] += records[i].Measured
+			}
+		}
+		peak, full := math.Inf(-1), 0
+		for m, s := range served {
+			peak = max(peak, s/float64(60*minutes[m]))
+			if covered[m] == minutes[m]*minute {
+				full++
+			}
+		}
+		var total Total
+		p.By = Day
+		for _, x := range collect(t, p, records) {
+			total.Add(x)
+		}
+		d := total.Period().Demand
+		if d.Windows != len(minutes) || d.Full != full || (d.PeakEnd > d.PeakStart) != (len(served) > 0) {
+			t.Fatalf("%+v; by the wall clock %d windows, %d full, %d covered", d, len(minutes), full, len(served))
+		}
+		if m := wall(d.PeakStart); len(served) > 0 && (math.Abs(d.Peak-peak) > 1e-9*math.Abs(peak)+1e-6 ||
+			math.Abs(d.PeakCoverage-float64(covered[m])/float64(minutes[m]*minute)) > 1e-12 || d.PeakEnd-d.PeakStart != minutes[m]*minute) {
+			t.Fatalf("%+v; by the wall clock the peak is %g", d, peak)
+		}
+	})
+}
+
+// Records by the hour give the days that those by the minute give, where the clock is
+// off UTC by full hours.
+func TestRecordsByTheHour(t *testing.T) {
+	zone, from := place(t, "Europe/Dublin"), at(t, "2026-10-24T00:00+01:00")
+	var minutes, hours []Record
+	for x := from; x < from+49*hour; x += minute {
+		minutes = append(minutes, record(x, float64(x/minute%977)*1e3, 5e3, 60))
+	}
+	for some := range slices.Chunk(minutes, 60) {
+		h := Record{Start: some[0].Start, End: some[59].End, Measured: hour, Uncertainty: 5e3, Lowest: math.Inf(1), Highest: math.Inf(-1)}
+		for _, r := range some {
+			h.Given += r.Given
+			h.Duty += r.Duty / 60
+			h.Lowest, h.Highest = min(h.Lowest, r.Lowest), max(h.Highest, r.Highest)
+		}
+		hours = append(hours, h)
+	}
+	p := Plan{From: from, To: from + 49*hour, Through: from + 49*hour, By: Day, Zone: zone, Demand: 30 * time.Minute}
+	fine, coarse := collect(t, p, minutes), collect(t, p, hours)
+	if len(fine) != 2 || len(coarse) != 2 {
+		t.Fatalf("%d and %d days, want 2", len(fine), len(coarse))
+	}
+	for i := range fine {
+		near(t, "heat by the hour", coarse[i].Given, fine[i].Given, 1e-14)
+		near(t, "uncertainty by the hour", coarse[i].Uncertainty, fine[i].Uncertainty, 1e-14)
+		if coarse[i].Measured != fine[i].Measured || coarse[i].Highest.Duty != fine[i].Highest.Duty {
+			t.Errorf("by the hour %+v, by the minute %+v", coarse[i], fine[i])
+		}
+		if fine[i].Demand.Full != fine[i].Demand.Windows || coarse[i].Demand != (Demand{Windows: fine[i].Demand.Windows}) {
+			t.Errorf("half hours by the minute %+v, by the hour %+v; an hour does not tell them", fine[i].Demand, coarse[i].Demand)
+		}
+	}
+}

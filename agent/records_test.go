@@ -1,0 +1,226 @@
+package agent
+
+import (
+	"math"
+	"path/filepath"
+	"slices"
+	"strings"
+	"testing"
+	"time"
+
+	"heatreeve/store"
+)
+
+// week is the beginning of the histories in these tests: the day before clocks go back
+// in Dublin.
+var week = time.Date(2026, 10, 23, 23, 0, 0, 0, time.UTC)
+
+// keep writes a history at path: n minutes of each load from week on, as f has them, or
+// none where it says so.
+func keep(t *testing.T, path string, o store.Options, n int, f func(load string, k int) (store.Minute, bool), loads ...string) *store.Store {
+	t.Helper()
+	db, err := store.Open(path, o)
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() { db.Close() })
+	ids, err := db.IDs("load", loads)
+	if err != nil {
+		t.Fatal(err)
+	}
+	b := store.Batch{Beats: []store.Beat{{Through: week.UnixNano() + int64(n)*minute}}}
+	for k := range n {
+		for i, load := range loads {
+			if m, ok := f(load, k); ok {
+				m.Load, m.Start = ids[i], week.UnixNano()+int64(k)*minute
+				b.Minutes = append(b.Minutes, m)
+			}
+		}
+	}
+	if err := db.Commit(b); err != nil {
+		t.Fatal(err)
+	}
+	return db
+}
+
+// ramp is a minute of a duty that rises by 100 W each minute, measured but for two
+// seconds of it.
+func ramp(_ string, k int) (store.Minute, bool) {
+	duty := 100 * float64(k)
+	return store.Minute{Measured: 58, Missing: 2, Given: 58 * duty, Duty: duty, DutyMin: duty - 5, DutyMax: duty + 5, DutyUncertainty: duty / 100}, true
+}
+
+// rampHeat is the heat of the ramp's minutes from a up to b.
+func rampHeat(a, b int) float64 { return 58 * 100 * float64(b*(b-1)-a*(a-1)) / 2 }
+
+func historyIn(t *testing.T, db *store.Store, zone string, current ...string) history {
+	t.Helper()
+	place, err := time.LoadLocation(zone)
+	if err != nil {
+		t.Fatal(err)
+	}
+	through, err := eventTime(db)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return history{db: db, zone: place, through: through.UnixNano, current: current}
+}
+
+func near12(a, b float64) bool { return math.Abs(a-b) <= 1e-12*math.Abs(b) }
+
+// Whatever records serve, hours or minutes, the heat is that of the ramp, and the time
+// adds up; by the clocks of places that are off UTC by full hours and by half ones, with
+// windows and without, from a full hour and from the middle of one.
+func TestReportOfARamp(t *testing.T) {
+	const n = 3 * 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, ramp, "ramp")
+	for _, zone := range []string{"Europe/Dublin", "America/St_Johns", "Asia/Kolkata", "UTC"} {
+		for _, by := range []string{"hour", "day", "month"} {
+			for _, demand := range []time.Duration{0, 15 * time.Minute, time.Hour} {
+				for _, span := range [][2]int{{0, n}, {60, 1500}, {80, 1999}, {3, 17}} {
+					h := historyIn(t, db, zone)
+					q := Query{By: by, Demand: demand,
+						From: week.Add(time.Duration(span[0]) * time.Minute).Format(time.RFC3339),
+						To:   week.Add(time.Duration(span[1]) * time.Minute).Format(time.RFC3339)}
+					checkRamp(t, &h, q, span[0], span[1])
+				}
+			}
+		}
+	}
+}
+
+func checkRamp(t *testing.T, h *history, q Query, from, to int) {
+	t.Helper()
+	r, err := h.report(t.Context(), q)
+	if err != nil || len(r.Loads) != 1 || len(r.Notes) > 0 {
+		t.Fatalf("%+v: %v, %+v", q, err, r)
+	}
+	l := r.Loads[0]
+	minutes := float64(to - from)
+	if want := rampHeat(from, to); !near12(l.Total.Given, want) || !near12(l.Total.Uncertainty, want/100) || l.Total.Measured != 58*minutes || l.Total.Missing != 2*minutes {
+		t.Errorf("%+v: total %+v, want %g J", q, l.Total, want)
+	}
+	if l.Begins != nil && from > 0 {
+		t.Errorf("%+v: begins %v", q, l.Begins)
+	}
+	if l.Total.Highest.Duty != 100*float64(to-1)+5 || l.Total.Lowest.Duty != 100*float64(from)-5 {
+		t.Errorf("%+v: from %+v to %+v", q, l.Total.Lowest, l.Total.Highest)
+	}
+	var given, missing float64
+	end := r.From
+	for _, p := range l.Periods {
+		a, b := int(p.AccountedFrom.Sub(week)/time.Minute), int(p.AccountedTo.Sub(week)/time.Minute)
+		if !near12(p.Given, rampHeat(a, b)) || !p.AccountedFrom.Equal(end) || p.Measured+p.Missing != p.AccountedTo.Sub(p.AccountedFrom).Seconds() {
+			t.Fatalf("%+v: %+v, want %g J", q, p, rampHeat(a, b))
+		}
+		given, missing, end = given+p.Given, missing+p.Missing, p.AccountedTo
+	}
+	if !near12(given, l.Total.Given) || missing != l.Total.Missing || !end.Equal(r.To) {
+		t.Errorf("%+v: periods up to %v with %g J and %g s missing, total %+v", q, end, given, missing, l.Total)
+	}
+	if d := l.Total.Demand; (d != nil) != (q.Demand != 0) || d != nil && d.Peak != nil && !near12(d.Peak.Duty,
+		rampHeat(int(d.Peak.Start.Sub(week)/time.Minute), int(d.Peak.End.Sub(week)/time.Minute))/q.Demand.Seconds()) {
+		t.Errorf("%+v: demand %+v", q, d)
+	}
+}
+
+// Where minutes have been given up for their age, their hours are still in the account;
+// what cannot be told any more is.
+func TestReportOfHoursWithoutMinutes(t *testing.T) {
+	const n = 3 * 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{MaxAge: 24 * time.Hour}, n, ramp, "ramp")
+	if _, err := db.Trim(week.Add(n * time.Minute).UnixNano()); err != nil {
+		t.Fatal(err)
+	}
+	ids, err := db.Names("load")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for range db.Minutes(ids["ramp"], week.UnixNano(), week.Add(24*time.Hour).UnixNano()) {
+		t.Fatal("the minutes of the first day are still there")
+	}
+	h := historyIn(t, db, "Europe/Dublin")
+	checkRamp(t, &h, Query{From: "2026-10-24", To: "2026-10-26"}, 0, 49*60)
+	r, err := h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25", Demand: 15 * time.Minute})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if l := r.Loads[0]; !near12(l.Total.Given, rampHeat(0, 1440)) || l.Total.Demand.Peak != nil || l.Total.Demand.Windows != 96 ||
+		len(r.Notes) != 1 || !strings.Contains(r.Notes[0], "ramp: of 24 hours not all minutes are left") {
+		t.Errorf("total %+v, notes %q", l.Total, r.Notes)
+	}
+	h = historyIn(t, db, "Asia/Kolkata") // midnight is in the middle of such an hour
+	if r, err = h.report(t.Context(), Query{From: "2026-10-24T06:00", To: "2026-10-26"}); err != nil {
+		t.Fatal(err)
+	}
+	if len(r.Notes) != 1 || !strings.Contains(r.Notes[0], "ramp: 3 records cannot be used and are missing") {
+		t.Errorf("notes %q; want the hours that lie in two days, or are cut by the ends of the report", r.Notes)
+	}
+}
+
+// A load that begins within the report shows so; one that is not accounted for any more is
+// told of only where it has a record, or is asked for.
+func TestReportOfLoadsThatComeAndGo(t *testing.T) {
+	const n = 2 * 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, func(load string, k int) (store.Minute, bool) {
+		m, _ := ramp(load, k)
+		return m, load == "old" && k < 600 || load == "new" && k >= 1690 || load == "blind" && k < 30
+	}, "old", "new", "blind")
+	h := historyIn(t, db, "Europe/Dublin", "new", "blind")
+	names := func(r *Report) (all []string) {
+		for _, l := range r.Loads {
+			all = append(all, l.Load)
+		}
+		return all
+	}
+	for _, tt := range []struct {
+		q    Query
+		want []string
+	}{
+		{Query{From: "2026-10-24"}, []string{"old", "new", "blind"}},
+		{Query{From: "2026-10-25"}, []string{"new", "blind"}},
+		{Query{From: "2026-10-24", To: "2026-10-25"}, []string{"old", "blind"}},
+		{Query{From: "2026-10-25", Loads: []string{"old"}}, []string{"old"}},
+	} {
+		r, err := h.report(t.Context(), tt.q)
+		if err != nil || !slices.Equal(names(r), tt.want) {
+			t.Errorf("%+v: %v, %v; want %v", tt.q, names(r), err, tt.want)
+		}
+	}
+	r, err := h.report(t.Context(), Query{From: "2026-10", By: "hour", Loads: []string{"new"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	l := r.Loads[0]
+	begins := week.Add(1690 * time.Minute)
+	if l.Begins == nil || !l.Begins.Equal(begins) || !l.Periods[0].Start.Equal(begins.Truncate(time.Hour)) || !near12(l.Total.Given, rampHeat(1690, n)) {
+		t.Errorf("begins %v, first period %v, total %+v", l.Begins, l.Periods[0].Start, l.Total)
+	}
+	if all := r.To.Sub(r.From).Seconds(); l.Total.Measured+l.Total.Missing != all {
+		t.Errorf("%g s measured and %g s missing of %g s", l.Total.Measured, l.Total.Missing, all)
+	}
+}
+
+func TestRegistersBesideTheSum(t *testing.T) {
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 600, ramp, "ramp")
+	ids, err := db.Names("load")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := db.Commit(store.Batch{Registers: []store.Register{{Load: ids["ramp"], Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}}); err != nil {
+		t.Fatal(err)
+	}
+	h := historyIn(t, db, "UTC")
+	for _, tt := range []struct {
+		to   string
+		want *Register
+	}{{"", &Register{5e9, 7, 11, 13}}, {"2027-01-01", &Register{5e9, 7, 11, 13}}, {"2026-10-24T05:00", nil}} {
+		r, err := h.report(t.Context(), Query{From: "2026-10-24", To: tt.to})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := r.Loads[0].Register; (got == nil) != (tt.want == nil) || got != nil && *got != *tt.want {
+			t.Errorf("to %q: register %+v, want %+v", tt.to, got, tt.want)
+		}
+	}
+}
