@@ -86,6 +86,95 @@ func BenchmarkCommit(b *testing.B) {
 	}
 }
 
+// BenchmarkSeal commits a day of 50 tags each 10 s, and a quarter of an hour of 4,000
+// tags each second, and then seals them as that many commits would. B/sealed is what the
+// pages then hold of a reading; ns/reading and ms/worst are the time that it takes,
+// of a reading and of the longest that one commit has to bear.
+func BenchmarkSeal(b *testing.B) {
+	for _, tt := range []struct {
+		what        string
+		tags, every int
+		commits     int
+	}{{"50-tags", 50, 10, 8640}, {"4000-tags", 4000, 1, 90}} {
+		b.Run(tt.what, func(b *testing.B) {
+			for b.Loop() {
+				b.StopTimer()
+				s := newStore(b, Options{MaxBytes: 1 << 30, BeatAge: math.MaxInt64})
+				w := newDriftWalk(tt.tags, tt.every)
+				for range tt.commits {
+					commit(b, s, Batch{Beats: w.beats(10), Checkpoint: []byte{1}})
+				}
+				s.beatAge, s.sealing.notBefore = time.Minute, math.MinInt64
+				b.StartTimer()
+				var worst, took time.Duration
+				for range tt.commits {
+					start := time.Now()
+					s.seal(10 * tt.tags / tt.every)
+					took += time.Since(start)
+					worst = max(worst, time.Since(start))
+				}
+				sealed := reportSealed(b, s)
+				b.ReportMetric(float64(worst.Microseconds())/1e3, "ms/worst")
+				b.ReportMetric(float64(took)/float64(sealed), "ns/reading")
+			}
+		})
+	}
+}
+
+// reportSealed tells what the pages of the blocks take of each reading in them, and
+// returns how many these are.
+func reportSealed(b *testing.B, s *Store) (readings int) {
+	b.Helper()
+	err := s.view(func(tx *bolt.Tx) error {
+		c := tx.Bucket(bucketSealed).Cursor()
+		for k, _ := c.First(); k != nil; k, _ = c.Next() {
+			head, err := parseName(k)
+			if err != nil {
+				return err
+			}
+			readings += int(head.readings)
+		}
+		return nil
+	})
+	if err != nil {
+		b.Fatal(err)
+	}
+	b.ReportMetric(float64(bucketBytes(b, s, bucketSealed))/float64(readings), "B/sealed")
+	return readings
+}
+
+// driftWalk makes the readings of tags that drift by decimals 0.01 apart with normal
+// steps, in K.
+type driftWalk struct {
+	rng    *rand.Rand
+	values []float64
+	every  int
+	n      int
+}
+
+func newDriftWalk(tags, every int) *driftWalk {
+	w := &driftWalk{rng: rand.New(rand.NewPCG(3, 4)), values: make([]float64, tags), every: every}
+	for i := range w.values {
+		w.values[i] = 40 + float64(i%50)
+	}
+	return w
+}
+
+func (w *driftWalk) beats(seconds int) []Beat {
+	beats := make([]Beat, seconds)
+	for i := range beats {
+		at := int64(1_760_000_000+w.n) * second
+		beats[i].Through = at
+		for tag := w.n % w.every; tag < len(w.values); tag += w.every {
+			w.values[tag] += 0.094 * w.rng.NormFloat64()
+			v := math.Round(w.values[tag]*100)/100 + 273.15
+			beats[i].Readings = append(beats[i].Readings, Reading{Tag: uint32(tag), At: at, Value: v, Stamped: true})
+		}
+		w.n++
+	}
+	return beats
+}
+
 // benchmarkWhole adds what 10 loads bring: registers with each commit, and each
 // minute their records and 4 kB of state.
 func benchmarkWhole(b *testing.B, commits, seconds int) {

@@ -11,7 +11,7 @@ import (
 // trim has overtaken it.
 func TestReadWhileWriting(t *testing.T) {
 	s := newStore(t, Options{MaxBytes: 150_000})
-	s.groupBytes = 4000
+	s.groupBytes, s.sealing.enough, s.beatAge = 4000, 3000, 10*second
 	commit(t, s, numbered(1))
 	stop := make(chan struct{})
 	var readers sync.WaitGroup

@@ -22,6 +22,7 @@
 //	journal    a bucket for each closed group, by its name; in it "r" -> records
 //	recent     a bucket for each part of the open group, by the uint64 sequence
 //	           of its first record; in it "r" -> records
+//	sealed     a bucket for each block, by its name; in it "r" -> the block
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
 //	minutes    int64 start, uint32 load / 8 -> minute records, CRC
 //	hours      int64 start, uint32 load / 8 -> hour records, CRC
@@ -77,6 +78,35 @@
 // and readings is how many there are. The names are the only index by time:
 // a search looks at all of them, some fifty to a page.
 //
+// Groups that the checkpoint stands for, and whose last beat is older than
+// Options.BeatAge, are put together in a block, which forgets the beats and keeps the
+// readings of each tag in the order in which they came. A block bears a name as a
+// group does, for all its groups, and takes their place in one transaction. A group
+// that cannot be read stays. A block is
+//
+//	uvarint columns, then for each: uvarint tag less the tag before, uvarint
+//	    readings, uvarint bytes of the column; CRC of all this
+//	columns, each with a CRC
+//
+// where the checksum's key is the name without its own CRC, and for a column the uint32
+// tag after that. A column begins with
+//
+//	1 byte tick, 1 byte 16·form + digits, instant start less the name's earliest,
+//	uvarint zigzag(base), uvarint step
+//
+// All times are start + a whole number of 10^tick ns. All values are told as whole
+// numbers n = base + step·m. By form 0, n is a float's bits, flipped so that numbers
+// sort as floats do; otherwise x = n/10^digits, and the value is x by form 1, x +
+// 273.15 by 2, x/3600 by 3, and x·(1/3600) by 4. The value may lie beside that by a few
+// floats, or by any number of them where it is no such decimal.
+//
+// An arithmetic coder of binary decisions follows, whose trailing zero bytes are
+// left out: of each reading one decision whether only the value is to be told; if not,
+// how much the difference of two times differs from the one before, by how many floats
+// the value lies beside its number's, and whether Stamped changes; then m less the
+// m before. [numbers] tells how an integer is cut into decisions, [bit] how each is
+// forecast.
+//
 // Under one key of minutes lie those of up to 8 loads with one start, sorted by
 // load: for each, 1 byte with the remainder of load / 8, 6 bytes of 4-bit counts
 // (low half first) and the bytes of 12 floats, in the order of the fields of
@@ -107,9 +137,9 @@
 // The list of free pages is not kept in the file, which spares a page a commit;
 // Open makes it from the same walk over all pages that finds damage.
 //
-// Open brings a file of version 1, which has no hours, to version 2: it moves the
+// Open brings a file of version 1, which has neither hours nor sealed, to version 2: it moves the
 // tails to recent, which makes room in the root's page, and adds what is missing,
-// with built and trimmed at the least int64. The commits that follow build the hours, a
-// few each. Other versions are refused. Change any of the above, and the version must
+// with built and trimmed at the least int64. The commits that follow build the hours
+// and seal the groups, a few each. Other versions are refused. Change any of the above, and the version must
 // change with it.
 package store

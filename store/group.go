@@ -179,10 +179,10 @@ func tailRecords(tx *bolt.Tx) (b []byte) {
 // loadOpen reads the open group back, and with it the memory of the writer.
 func loadOpen(tx *bolt.Tx) (*openGroup, error) {
 	first := uint64(1)
-	if k, _ := tx.Bucket(bucketJournal).Cursor().Last(); k != nil {
+	if k := newGroupCursor(tx).last(); k != nil {
 		closed, err := parseName(k)
 		if err != nil {
-			return nil, fmt.Errorf("last group of the journal: %w", err)
+			return nil, fmt.Errorf("last closed group: %w", err)
 		}
 		first = closed.last + 1
 	}

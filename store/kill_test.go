@@ -49,7 +49,7 @@ func commitForEver(path string) error {
 	if err != nil {
 		return err
 	}
-	s.groupBytes = 4000
+	s.groupBytes, s.sealing.enough, s.beatAge = 4000, 2000, 10*second
 	n, err := lastNumber(s)
 	if err != nil {
 		return err

@@ -67,13 +67,14 @@ func TestModel(t *testing.T) {
 		defer os.RemoveAll(dir)
 		path := filepath.Join(dir, "history.db")
 		group := rapid.SampledFrom([]int{100, 3000, 8000}).Draw(t, "group")
+		enough := rapid.SampledFrom([]int{1, 40, 1 << 16}).Draw(t, "enough")
 		m := model{minutes: map[[2]int64]Minute{}, registers: map[uint32]Register{}}
 		for range rapid.IntRange(1, 4).Draw(t, "openings") {
 			s, err := Open(path, Options{})
 			if err != nil {
 				t.Fatal(err)
 			}
-			s.groupBytes = group
+			s.groupBytes, s.sealing.enough, s.beatAge = group, enough, 1
 			for _, b := range rapid.SliceOfN(anyBatch, 0, 15).Draw(t, "batches") {
 				if err := s.Commit(b); err != nil {
 					t.Fatal(err)

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io/fs"
 	"log/slog"
+	"math"
 	"os"
 	"path/filepath"
 	"runtime/debug"
@@ -46,8 +47,8 @@ const (
 	// pieceMargin is what the tails leave free of a quarter page each, which is
 	// the most that bbolt keeps inside another page. With it the root's page has
 	// room for three tails, the greatest inline registers, and the rest, which
-	// takes 661 bytes: 661 + 3·(P/4 − 218) + P/4 − 16 = P − 9.
-	pieceMargin = 218
+	// takes 715 bytes: 715 + 3·(P/4 − 236) + P/4 − 16 = P − 9.
+	pieceMargin = 236
 
 	fileMode = 0o600
 )
@@ -69,27 +70,30 @@ func open(path string, o Options) (*Store, error) {
 	if err := create(path); err != nil {
 		return nil, err
 	}
-	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, maxBytes: o.MaxBytes, groupBytes: defaultGroup}
+	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, beatAge: o.BeatAge, maxBytes: o.MaxBytes,
+		groupBytes: defaultGroup, log: o.Log, newest: math.MinInt64, sealing: newSealer(1)}
 	if s.maxBytes <= 0 {
 		s.maxBytes = defaultBytes
 	}
-	log := o.Log
-	if log == nil {
-		log = slog.New(slog.DiscardHandler)
+	if s.beatAge <= 0 {
+		s.beatAge = defaultBeatAge
+	}
+	if s.log == nil {
+		s.log = slog.New(slog.DiscardHandler)
 	}
 	limit := fileLimit(s.maxBytes, o.MaxFile)
 	err := guard(func() (err error) {
 		if s.db, err = openChecked(path, limit); err != nil {
 			return err
 		}
-		s.db, err = compact(s.db, limit, log)
+		s.db, err = compact(s.db, limit, s.log)
 		return err
 	})
 	if err != nil {
 		return nil, err
 	}
 	s.piece = s.db.Info().PageSize/4 - pieceMargin
-	if err := s.upgrade(log); err != nil {
+	if err := s.upgrade(); err != nil {
 		return nil, errors.Join(err, s.db.Close())
 	}
 	err = s.view(func(tx *bolt.Tx) (err error) {
@@ -98,6 +102,9 @@ func open(path string, o Options) (*Store, error) {
 	})
 	if err != nil {
 		return nil, errors.Join(fmt.Errorf("%w: %w%s", ErrDamaged, err, advice), s.db.Close())
+	}
+	if s.open.memory.through.seen {
+		s.newest = s.open.memory.through.last
 	}
 	s.measure()
 	return s, nil
@@ -234,7 +241,7 @@ func buckets(version uint32) [][]byte {
 		all = append(all, bucketTail(i))
 	}
 	if version > firstVersion {
-		all = append(all, bucketHours)
+		all = append(all, bucketHours, bucketSealed)
 	}
 	return all
 }

@@ -23,13 +23,14 @@ func (s *Store) damage(what string, key []byte, err error) error {
 	return fmt.Errorf("history %q: %w: %s with key % x: %w", s.path, ErrDamaged, what, key, err)
 }
 
-// chunk is a group taken out of the file.
+// chunk is a group or a block taken out of the file.
 type chunk struct {
 	span
-	records []byte
+	sealed  bool
+	records []byte // or the block
 }
 
-// chunks yields the groups that hold records after number after and of which
+// chunks yields the groups and blocks that hold records after number after and of which
 // want is true, in order; each comes from a read transaction of its own. A group with a
 // damaged header is told as an error and passed over.
 func (s *Store) chunks(after uint64, want func(span) bool) iter.Seq2[chunk, error] {
@@ -54,40 +55,41 @@ func (s *Store) chunks(after uint64, want func(span) bool) iter.Seq2[chunk, erro
 // nextChunk looks for the next wanted group and moves after past what it has
 // looked at. end tells that nothing comes after it.
 func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c chunk, end bool, err error) {
-	journal := tx.Bucket(bucketJournal)
-	cursor := journal.Cursor()
-	k := seekGroup(cursor, *after+1)
+	cursor := newGroupCursor(tx)
+	cursor.seek(*after + 1)
 	for range headersAView {
-		if k == nil {
+		at := cursor.at()
+		if at.name == nil {
 			c, err = s.openChunk(tx, *after, want)
 			return c, true, err
 		}
-		head, err := parseName(k)
+		head, err := parseName(at.name)
 		if err != nil {
-			err = s.damage("group", k, err)
-			if k, _ = cursor.Next(); k == nil {
+			err = s.damage("group", at.name, err)
+			cursor.next()
+			if at = cursor.at(); at.name == nil {
 				return c, true, err
 			}
-			*after = binary.BigEndian.Uint64(k) - 1
+			*after = binary.BigEndian.Uint64(at.name) - 1
 			return c, false, err
 		}
 		if *after > 0 && head.first > *after+1 {
 			missing := fmt.Errorf("records %d to %d are missing before it", *after+1, head.first-1)
 			*after = head.first - 1
 			if trimmed, err := s.trimmed(tx, head.first); err != nil || !trimmed {
-				return c, false, errors.Join(err, s.damage("group", k, missing))
+				return c, false, errors.Join(err, s.damage("group", at.name, missing))
 			}
 		}
 		fresh := head.last > *after
 		*after = max(*after, head.last)
 		if fresh && want(head) {
-			own := journal.Bucket(k)
-			if own == nil {
-				return c, false, s.damage("group", k, errRecord)
+			records := at.bytes()
+			if records == nil {
+				return c, false, s.damage("group", at.name, errRecord)
 			}
-			return chunk{head, bytes.Clone(own.Get(keyRecords))}, false, nil
+			return chunk{head, at == &cursor.sealed, bytes.Clone(records)}, false, nil
 		}
-		k, _ = cursor.Next()
+		cursor.next()
 	}
 	return c, false, nil
 }
@@ -98,7 +100,9 @@ func (s *Store) trimmed(tx *bolt.Tx, first uint64) (bool, error) {
 	if err != nil {
 		return false, err
 	}
-	k, _ := tx.Bucket(bucketJournal).Cursor().First()
+	cursor := newGroupCursor(tx)
+	cursor.first()
+	k := cursor.at().name
 	return len(k) >= 8 && binary.BigEndian.Uint64(k) == first && first-1 < mark.seq, nil
 }
 
@@ -123,7 +127,7 @@ func (s *Store) openChunk(tx *bolt.Tx, after uint64, want func(span) bool) (chun
 	if g.last < g.first || g.last <= after || !want(g.span) {
 		return chunk{}, nil
 	}
-	return chunk{g.span, append(recentRecords(tx), g.tail...)}, nil
+	return chunk{g.span, false, append(recentRecords(tx), g.tail...)}, nil
 }
 
 // each calls f with the records of c in order until f returns false.
@@ -141,7 +145,8 @@ func (c *chunk) each(f func(seq uint64, beats []Beat) bool) error {
 	return nil
 }
 
-// beats yields the beats of all records numbered in (after, upTo].
+// beats yields the beats of all records numbered in (after, upTo]. None of these
+// should be sealed.
 func (s *Store) beats(after, upTo uint64, want func(span) bool) iter.Seq2[Beat, error] {
 	return func(yield func(Beat, error) bool) {
 		for c, err := range s.chunks(after, want) {
@@ -153,6 +158,13 @@ func (s *Store) beats(after, upTo uint64, want func(span) bool) iter.Seq2[Beat, 
 			}
 			if c.first > upTo {
 				return
+			}
+			if c.sealed {
+				err := fmt.Errorf("%w: records %d to %d are sealed, their beats are gone", ErrDamaged, c.first, c.last)
+				if !yield(Beat{}, fmt.Errorf("history %q: %w", s.path, err)) {
+					return
+				}
+				continue
 			}
 			stopped := false
 			err := c.each(func(seq uint64, beats []Beat) bool {
@@ -190,7 +202,8 @@ func (s *Store) Since() iter.Seq2[Beat, error] {
 
 // Before yields, in the order of commitment, the beats that the last checkpoint
 // stands for and whose Through is not more than d before that of the newest of
-// them. With them the caller knows again what the broker delivers a second time.
+// them, as far as Options.BeatAge keeps them. With them the caller knows again what
+// the broker delivers a second time.
 func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 	return func(yield func(Beat, error) bool) {
 		c, err := s.latest()
@@ -224,7 +237,8 @@ func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 }
 
 // groupBefore goes back from the group of record seq until one holds nothing at
-// from or later, and returns the number of its last record.
+// from or later, and returns the number of its last record, or else that of the last
+// record before the journal.
 func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 	err = s.view(func(tx *bolt.Tx) error {
 		c := tx.Bucket(bucketJournal).Cursor()
@@ -237,6 +251,7 @@ func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 				last = head.last
 				return nil
 			}
+			last = head.first - 1
 		}
 		return nil
 	})
@@ -250,20 +265,65 @@ func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 func (s *Store) Readings(tag uint32, from, to int64) iter.Seq2[Reading, error] {
 	want := func(g span) bool { return g.overlaps(from, to) }
 	return func(yield func(Reading, error) bool) {
-		for b, err := range s.beats(0, math.MaxUint64, want) {
-			if err != nil {
-				if !yield(Reading{}, err) {
-					return
+		var passed []passedGroup
+		for c, err := range s.chunks(0, want) {
+			skip, found, stopped := 0, 0, false
+			if err == nil {
+				skip = c.skip(passed)
+				err = c.ofTag(tag, func(r Reading) bool {
+					if r.At < from || r.At >= to {
+						return true
+					}
+					if found++; found > skip {
+						stopped = !yield(r, nil)
+					}
+					return !stopped
+				})
+				passed = append(passed, passedGroup{c.first, found})
+				if err != nil {
+					err = fmt.Errorf("history %q: %w", s.path, err)
 				}
-				continue
 			}
-			for _, r := range b.Readings {
-				if r.Tag == tag && r.At >= from && r.At < to && !yield(r, nil) {
-					return
-				}
+			if stopped || err != nil && !yield(Reading{}, err) {
+				return
 			}
 		}
 	}
+}
+
+// passedGroup tells how many readings a reader got from a group.
+type passedGroup struct {
+	first uint64
+	found int
+}
+
+// skip is how many readings of c a reader already had from its groups, before they
+// were sealed.
+func (c *chunk) skip(passed []passedGroup) (n int) {
+	for i := len(passed) - 1; i >= 0 && passed[i].first >= c.first; i-- {
+		n += passed[i].found
+	}
+	return n
+}
+
+// ofTag calls f with the readings of a tag until f returns false.
+func (c *chunk) ofTag(tag uint32, f func(Reading) bool) error {
+	if c.sealed {
+		if err := eachReading(c.span.name(), c.records, tag, f); err != nil {
+			return fmt.Errorf("%w: tag %d in the block of records %d to %d: %w", ErrDamaged, tag, c.first, c.last, err)
+		}
+		return nil
+	}
+	return c.each(func(_ uint64, beats []Beat) bool {
+		for _, b := range beats {
+			for _, r := range b.Readings {
+				if r.Tag == tag && !f(r) {
+					return false
+				}
+			}
+		}
+		return true
+	})
 }
 
 // Minutes yields the minutes of a load with from <= Start < to, by Start. The

@@ -21,6 +21,7 @@ var (
 	bucketRecent    = []byte("recent")
 	bucketMinutes   = []byte("minutes")
 	bucketHours     = []byte("hours")
+	bucketSealed    = []byte("sealed")
 	bucketRegisters = []byte("registers")
 	bucketState     = []byte("state")
 
@@ -54,13 +55,17 @@ type Options struct {
 	MaxAge time.Duration
 	// MaxHourAge is how long hours are kept; 0 keeps them until MaxBytes is reached.
 	MaxHourAge time.Duration
+	// BeatAge is how long beats are kept as such for Before, counted in event time; 0
+	// stands for one hour. Of older ones only the readings are kept, in less room.
+	BeatAge time.Duration
 	// MaxBytes bounds the pages in use; 0 stands for 256 MiB. Trim keeps to it.
 	MaxBytes int64
 	// MaxFile bounds the file, which holds free pages as well. At this size
 	// Commit fails, and IsFull tells so. 0 stands for MaxBytes and an eighth and
 	// 16 MiB more, and on a 32-bit machine for no more than 400 MB.
 	MaxFile int64
-	// Log hears of a compaction at Open; nil is silence.
+	// Log hears of a compaction or a new layout at Open, and of readings that cannot
+	// be sealed; nil is silence.
 	Log *slog.Logger
 }
 
@@ -71,16 +76,20 @@ type Store struct {
 	path       string
 	maxAge     time.Duration
 	maxHourAge time.Duration
+	beatAge    time.Duration
+	log        *slog.Logger
 	maxBytes   int64
 	piece      int // bytes that one tail bucket may hold
 	groupBytes int // size at which a group is closed
 
 	used atomic.Int64 // bytes of the pages in use
 
-	mu     sync.Mutex // held while writing; guards what follows
-	open   *openGroup // nil: to be read from the file before the next record
-	full   bool       // the last commit found no room
-	closed bool
+	mu      sync.Mutex // held while writing; guards what follows
+	open    *openGroup // nil: to be read from the file before the next record
+	newest  int64      // Through of the last beat
+	sealing sealer
+	full    bool // the last commit found no room
+	closed  bool
 }
 
 // Commit writes b in one transaction, which is on the disk when Commit returns
@@ -104,6 +113,12 @@ func (s *Store) Commit(b Batch) error {
 		return fmt.Errorf("commit to history %q: %w", s.path, err)
 	}
 	s.open = open
+	readings := 0
+	for _, beat := range b.Beats {
+		s.newest = beat.Through
+		readings += len(beat.Readings)
+	}
+	s.seal(readings)
 	return nil
 }
 

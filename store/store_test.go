@@ -84,7 +84,7 @@ func TestResume(t *testing.T) {
 	var state string
 	at := int64(1_760_000_000 * second)
 	for round := range 400 {
-		s, err := Open(path, Options{})
+		s, err := Open(path, Options{BeatAge: 1e6 * time.Second})
 		if err != nil {
 			t.Fatal(err)
 		}

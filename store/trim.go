@@ -40,8 +40,8 @@ type Trimmed struct{ Readings, Minutes, Hours, Damaged int64 }
 // are in use, the oldest readings, after those the oldest minutes, and last the
 // oldest hours. Beats after the last checkpoint are never removed, for a restart
 // needs them, nor the minutes of the newest hour, nor any register. Readings go a
-// group at a time, and the group that still grows stays: up to 48 KiB of them
-// may be kept longer than MaxAge. After a Commit that found no room, Trim makes
+// group or block at a time and the last of these stays: 48 KiB of them, or a
+// day's, may be kept longer than MaxAge. After a Commit that found no room, Trim makes
 // some, however much MaxBytes allows.
 func (s *Store) Trim(now int64) (Trimmed, error) {
 	s.mu.Lock()
@@ -100,51 +100,52 @@ func (s *Store) trim(remove remover, old, bound int64, t *Trimmed) error {
 // became free have been counted.
 type remover func(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error)
 
-// trimGroups removes groups from the front of the journal.
+// trimGroups removes blocks and groups from the front.
 func (s *Store) trimGroups(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
 	mark, err := s.checkpoint(tx)
 	if err != nil {
 		return false, err
 	}
-	journal := tx.Bucket(bucketJournal)
-	names := s.doomed(journal, mark.seq, old, excess)
-	for _, name := range names {
-		if err := journal.DeleteBucket(name); err != nil {
+	doomed := s.doomed(tx, mark.seq, old, excess)
+	for _, d := range doomed {
+		if err := d.bucket.DeleteBucket(d.name); err != nil {
 			return false, err
 		}
-		if head, err := parseName(name); err == nil {
+		if head, err := parseName(d.name); err == nil {
 			t.Readings += int64(head.readings)
 		} else {
 			t.Damaged++
 		}
 	}
-	return len(names) > 0, nil
+	return len(doomed) > 0, nil
 }
 
-// doomed returns the names of the groups to remove, oldest first. A group with a
-// damaged name goes with the next one after it.
-func (s *Store) doomed(journal *bolt.Bucket, mark uint64, old, excess int64) (names [][]byte) {
+// doomed returns the blocks and groups to remove, oldest first. One with a damaged name
+// goes with the next one after it. The last of all stays: its name tells the number of
+// the record that comes next.
+func (s *Store) doomed(tx *bolt.Tx, mark uint64, old, excess int64) (all []groupSide) {
 	page := int64(s.db.Info().PageSize)
-	var damaged [][]byte
-	c := journal.Cursor()
-	for k, _ := c.First(); k != nil && len(names) < groupsATrim; k, _ = c.Next() {
-		head, err := parseName(k)
+	var damaged []groupSide
+	c := newGroupCursor(tx)
+	last := c.last()
+	for c.first(); c.at().name != nil && len(all) < groupsATrim; c.next() {
+		if bytes.Equal(c.at().name, last) {
+			break
+		}
+		d := groupSide{bucket: c.at().bucket, name: bytes.Clone(c.at().name)}
+		head, err := parseName(d.name)
 		if err != nil {
-			damaged = append(damaged, bytes.Clone(k))
+			damaged = append(damaged, d)
 			continue
 		}
 		if head.last >= mark || head.latest >= old && excess <= 0 {
 			break
 		}
-		size := 0
-		if own := journal.Bucket(k); own != nil {
-			size = len(own.Get(keyRecords))
-		}
-		excess -= (int64(size) + page) / page * page
-		names = append(append(names, damaged...), bytes.Clone(k))
+		excess -= (int64(len(d.bytes())) + page) / page * page
+		all = append(append(all, damaged...), d)
 		damaged = nil
 	}
-	return names
+	return all
 }
 
 // trimMinutes removes minutes from the front, of hours that have been built.

@@ -3,7 +3,6 @@ package store
 import (
 	"encoding/binary"
 	"fmt"
-	"log/slog"
 
 	bolt "go.etcd.io/bbolt"
 )
@@ -11,15 +10,15 @@ import (
 // upgrade brings a file of the layout before to the present one. It adds what is
 // new and takes nothing away; the hours of its minutes are built by the commits
 // that follow, and told from the minutes until then.
-func (s *Store) upgrade(log *slog.Logger) error {
+func (s *Store) upgrade() error {
 	version, err := s.version()
 	if err != nil || version == Version {
 		return err
 	}
-	if err := s.update(func(tx *bolt.Tx) error { return upgradeTo(tx) }); err != nil {
+	if err := s.update(upgradeTo); err != nil {
 		return fmt.Errorf("bring it from layout version %d to %d: %w", version, Version, err)
 	}
-	log.Info("history has a new layout", "file", s.path, "before", version, "now", Version)
+	s.log.Info("history has a new layout", "file", s.path, "before", version, "now", Version)
 	return nil
 }
 
@@ -32,6 +31,9 @@ func (s *Store) version() (version uint32, err error) {
 }
 
 func upgradeTo(tx *bolt.Tx) error {
+	if _, err := tx.CreateBucket(bucketSealed); err != nil {
+		return err
+	}
 	// The tails make room in the root's page for the new buckets.
 	open, err := loadOpen(tx)
 	if err != nil {
