@@ -3,6 +3,7 @@ package store
 import (
 	"errors"
 	"fmt"
+	"log/slog"
 	"os"
 	"time"
 
@@ -36,7 +37,7 @@ func openReadOnly(path string, o *bolt.Options) (s *Store, err error) {
 		return nil, fmt.Errorf("%w: it has been cut off, or was never written; read a backup", ErrEmptied)
 	}
 	o.ReadOnly, o.Timeout = true, readWait
-	s = &Store{path: path}
+	s = &Store{path: path, log: slog.New(slog.DiscardHandler)}
 	err = guard(func() (err error) {
 		s.db, err = bolt.Open(path, 0, o)
 		switch {
