@@ -2,6 +2,7 @@ package store
 
 import (
 	"encoding/binary"
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -237,12 +238,12 @@ func benchmarkPlain(b *testing.B, commits, seconds int) {
 	b.ReportMetric(float64(written(db, commits))/readings, "B/reading")
 }
 
-// year is a file with a year of minutes of 10 loads and the last weeks of 50
-// tags, as much as the default bound holds.
-func year(b *testing.B) (path string, end int64) {
+// year is a file with what a bound leaves of a year of minutes of 10 loads and of the
+// last weeks of 50 tags.
+func year(b *testing.B, bound int64) (path string, end int64) {
 	b.Helper()
 	path = filepath.Join(b.TempDir(), "history.db")
-	s, err := Open(path, Options{MaxBytes: 1 << 30})
+	s, err := Open(path, Options{MaxBytes: bound})
 	if err != nil {
 		b.Fatal(err)
 	}
@@ -265,6 +266,11 @@ func year(b *testing.B) (path string, end int64) {
 			}
 		}
 		commit(b, s, batch)
+		if hour%24 == 0 {
+			if _, err := s.Trim(at); err != nil {
+				b.Fatal(err)
+			}
+		}
 	}
 	if err := s.Close(); err != nil {
 		b.Fatal(err)
@@ -289,7 +295,7 @@ func bucketBytes(b *testing.B, s *Store, name []byte) (n int) {
 // BenchmarkBuildHours brings a year of minutes without hours to hours, as the
 // commits after an upgrade do. ms/worst is the longest of them.
 func BenchmarkBuildHours(b *testing.B) {
-	path, end := year(b)
+	path, end := year(b, 1<<30)
 	s := openStore(b, path, Options{MaxBytes: 1 << 30})
 	for b.Loop() {
 		if err := s.db.Update(func(tx *bolt.Tx) error { return putHourMark(tx, unbuilt) }); err != nil {
@@ -319,22 +325,41 @@ func BenchmarkBuildHours(b *testing.B) {
 	}
 }
 
-// BenchmarkYear opens a file with a year in it, and reads 30 days of minutes of
-// one load of ten, and one day of one tag of fifty.
-func BenchmarkYear(b *testing.B) {
-	path, end := year(b)
-	b.Run("open", func(b *testing.B) {
-		for b.Loop() {
-			s, err := Open(path, Options{MaxBytes: 1 << 30})
-			if err != nil {
-				b.Fatal(err)
-			}
-			b.ReportMetric(float64(s.Bytes()), "B/file")
-			if err := s.Close(); err != nil {
-				b.Fatal(err)
-			}
+// BenchmarkOpen opens a file with a year in it, as large as all of it and as the default
+// bound leaves it, after a Close and as a process leaves it that is killed after a
+// commit.
+func BenchmarkOpen(b *testing.B) {
+	for _, bound := range []int64{1 << 30, defaultBytes} {
+		path, _ := year(b, bound)
+		for _, tt := range []struct {
+			what string
+			end  func(*Store) error
+		}{
+			{"closed", (*Store).Close},
+			{"killed", func(s *Store) error { return errors.Join(s.Commit(Batch{}), s.db.Close()) }},
+		} {
+			b.Run(fmt.Sprintf("%dMiB/%s", bound>>20, tt.what), func(b *testing.B) {
+				for b.Loop() {
+					s, err := Open(path, Options{MaxBytes: bound})
+					if err != nil {
+						b.Fatal(err)
+					}
+					b.StopTimer()
+					b.ReportMetric(float64(s.Bytes()), "B/file")
+					if err := tt.end(s); err != nil {
+						b.Fatal(err)
+					}
+					b.StartTimer()
+				}
+			})
 		}
-	})
+	}
+}
+
+// BenchmarkYear reads 30 days of minutes and of hours of one load of ten, and one day
+// of one tag of fifty, from a file with a year in it.
+func BenchmarkYear(b *testing.B) {
+	path, end := year(b, 1<<30)
 	s := openStore(b, path, Options{MaxBytes: 1 << 30})
 	b.Run("minutes", func(b *testing.B) {
 		for b.Loop() {

@@ -134,8 +134,9 @@
 // buckets of their own because bbolt keeps two keys and more in each page, and so
 // writes long values again with each of the next few.
 //
-// The list of free pages is not kept in the file, which spares a page a commit;
-// Open makes it from the same walk over all pages that finds damage.
+// The list of free pages is in the file only from a Close to the first commit after
+// it, which spares the others a page. Where it is not, Open makes it from a walk over all
+// pages, after the one that looks for damage; where it is, it is looked at as well.
 //
 // Open brings a file of version 1, which has neither hours nor sealed, to version 2: it moves the
 // tails to recent, which makes room in the root's page, and adds what is missing,

@@ -121,8 +121,7 @@ func fileLimit(maxBytes, maxFile int64) int {
 }
 
 // boltOptions keeps the list of free pages out of the file, which spares each
-// commit a page. It is made anew at Open, from the same walk over all pages
-// that is needed to find damage.
+// commit a page. Close puts it there.
 func boltOptions(limit int) *bolt.Options {
 	return &bolt.Options{
 		Timeout:         lockWait,
