@@ -390,3 +390,28 @@ func BenchmarkYear(b *testing.B) {
 		}
 	})
 }
+
+// BenchmarkHourEnds commits an hour's minutes of 1,000 loads and then the first of the
+// next hour, which builds the hour. ms/minute is the mean commit without, ms/hour the one
+// with it.
+func BenchmarkHourEnds(b *testing.B) {
+	for b.Loop() {
+		b.StopTimer()
+		s := newStore(b, Options{})
+		var took [2]time.Duration
+		for minute := range int64(61) {
+			var batch Batch
+			for load := range uint32(1000) {
+				m := wave(load, 480_000*hourNanos+minute*60*second)
+				m.Given, m.Inlet = math.Sqrt(m.Given+float64(load)), m.Inlet+1/float64(load+3)
+				batch.Minutes = append(batch.Minutes, m)
+			}
+			start := time.Now()
+			commit(b, s, batch)
+			took[minute/60] += time.Since(start)
+		}
+		b.ReportMetric(float64(took[0].Microseconds())/60e3, "ms/minute")
+		b.ReportMetric(float64(took[1].Microseconds())/1e3, "ms/hour")
+		b.StartTimer()
+	}
+}

@@ -296,3 +296,41 @@ func TestMissingGroup(t *testing.T) {
 		}
 	}
 }
+
+// TestFreeListDamage puts a page that is in use on the list of free pages, which a later
+// commit would write over: Open refuses. The same file without the list is good.
+func TestFreeListDamage(t *testing.T) {
+	path, whole, size := sample(t)
+	meta := whole[:size]
+	if b := whole[size : 2*size]; binary.LittleEndian.Uint64(b[metaID:]) > binary.LittleEndian.Uint64(meta[metaID:]) {
+		meta = b
+	}
+	list := binary.LittleEndian.Uint64(meta[metaFree:])
+	if list == noFreeList {
+		t.Fatal("Close wrote no list of free pages")
+	}
+	root := binary.LittleEndian.Uint64(meta[metaFree-16:])
+	for _, change := range []func(page []byte){
+		func(page []byte) { binary.LittleEndian.PutUint64(page[pageHead:], root) },
+		func(page []byte) { binary.LittleEndian.PutUint64(page[pageHead:], 1<<40) },
+		func(page []byte) { copy(page[pageHead:], page[pageHead+8:pageHead+16]) },
+		func(page []byte) { binary.LittleEndian.PutUint16(page[10:], 60_000) },
+		func(page []byte) { binary.LittleEndian.PutUint16(page[8:], pageLeaf) },
+	} {
+		b := append([]byte{}, whole...)
+		change(b[int(list)*size : int(list+1)*size])
+		rewrite(t, path, b)
+		if err := outcome(t, path); !errors.Is(err, ErrDamaged) {
+			t.Errorf("with the list % x: %v", b[int(list)*size:][:pageHead+16], err)
+		}
+	}
+	rewrite(t, path, whole)
+	s := openStore(t, path, Options{})
+	commit(t, s, numbered(damageNumbers+1))
+	if err := s.db.Close(); err != nil { // as a kill leaves it
+		t.Fatal(err)
+	}
+	s.closed = true
+	again := openStore(t, path, Options{})
+	testNumbered(t, again, damageNumbers+1)
+}
