@@ -274,11 +274,19 @@ func (c loadCursor) seek(from int64) (k, v []byte) {
 	return c.settle(c.Seek(minuteKey(from, c.block*loadsAKey)))
 }
 
-func (c loadCursor) next() (k, v []byte) { return c.settle(c.Next()) }
+func (c loadCursor) next() (k, v []byte) { return c.settle(c.Cursor.Next()) }
+
+// near is how many keys settle goes by one by one before it searches, which takes as
+// long as twenty of them.
+const near = 8
 
 // settle goes on from k to the first key of the block.
 func (c loadCursor) settle(k, v []byte) ([]byte, []byte) {
-	for len(k) == 12 && binary.BigEndian.Uint32(k[8:]) != c.block {
+	for n := 0; len(k) == 12 && binary.BigEndian.Uint32(k[8:]) != c.block; n++ {
+		if n < near {
+			k, v = c.Next()
+			continue
+		}
 		at := keyTime(k)
 		if binary.BigEndian.Uint32(k[8:]) > c.block {
 			if at == math.MaxInt64 {

@@ -123,6 +123,42 @@ func TestHourOnce(t *testing.T) {
 	})
 }
 
+// TestManyLoads reads minutes and hours of a few loads of a thousand, some of which do
+// not have every minute.
+func TestManyLoads(t *testing.T) {
+	s := newStore(t, Options{})
+	const start, minutes = 480_000 * hourNanos, 150
+	for minute := range int64(minutes) {
+		var b Batch
+		for load := range uint32(1000) {
+			if int64(load)%7 != minute%7 {
+				b.Minutes = append(b.Minutes, wave(load, start+minute*60*second))
+			}
+		}
+		commit(t, s, b)
+	}
+	for _, load := range []uint32{0, 5, 8, 500, 993, 999} {
+		var want, sum Hour
+		n := 0
+		for m, err := range s.Minutes(load, math.MinInt64, math.MaxInt64) {
+			if err != nil || m != wave(load, m.Start) {
+				t.Fatalf("%+v, %v", m, err)
+			}
+			want.Given += m.Given
+			n++
+		}
+		for _, h := range drain(t, s.Hours(load, math.MinInt64, math.MaxInt64)) {
+			sum.Add(h)
+		}
+		if n < 128 || n > 129 || int(sum.Minutes) != n || sum.Given != want.Given {
+			t.Errorf("load %d: %d minutes of %v J, hours of %d and %v J", load, n, want.Given, sum.Minutes, sum.Given)
+		}
+	}
+	if got := drain(t, s.Minutes(1000, math.MinInt64, math.MaxInt64)); len(got) != 0 {
+		t.Errorf("a load that has none: %v", got)
+	}
+}
+
 // TestHoursOutliveMinutes trims minutes by age: their hours stay, also when a minute of
 // one comes again, and go by an age of their own.
 func TestHoursOutliveMinutes(t *testing.T) {

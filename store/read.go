@@ -331,11 +331,10 @@ func (c *chunk) ofTag(tag uint32, f func(Reading) bool) error {
 // those that lie near them, and passed over unless the caller stops.
 func (s *Store) Minutes(load uint32, from, to int64) iter.Seq2[Minute, error] {
 	return func(yield func(Minute, error) bool) {
-		key, end := timeKey(from), timeKey(to)
 		var found []Minute
-		for key != nil {
+		for from < to {
 			var faults []error
-			found, faults, key = s.minutesFrom(found[:0], key, end, load)
+			found, faults, from = s.minutesFrom(found[:0], from, to, load)
 			for _, m := range found {
 				if !yield(m, nil) {
 					return
@@ -350,31 +349,28 @@ func (s *Store) Minutes(load uint32, from, to int64) iter.Seq2[Minute, error] {
 	}
 }
 
-// minutesFrom adds to found from some keys, key being the first. next is where to go
-// on, nil at the end.
-func (s *Store) minutesFrom(found []Minute, key, end []byte, load uint32) (all []Minute, faults []error, next []byte) {
-	all = found
+// minutesFrom adds some minutes to found. next is where to go on, to or later at the
+// end.
+func (s *Store) minutesFrom(found []Minute, from, to int64, load uint32) (all []Minute, faults []error, next int64) {
+	all, next = found, to
 	err := s.view(func(tx *bolt.Tx) error {
-		c := tx.Bucket(bucketMinutes).Cursor()
-		k, v := c.Seek(key)
-		if string(k) == string(keyPlaceholder) {
-			k, v = c.Next()
-		}
-		for range minutesAView {
-			if k == nil || string(k) >= string(end) {
+		c := loadCursor{tx.Bucket(bucketMinutes).Cursor(), load / loadsAKey}
+		k, v := c.seek(from)
+		for n := 0; k != nil && keyTime(k) < to; n++ {
+			if n == minutesAView {
+				next = keyTime(k)
 				return nil
 			}
 			var err error
 			if all, err = parseMinutes(all, k, v, func(l uint32) bool { return l == load }); err != nil {
 				faults = append(faults, s.damage("minutes", k, err))
 			}
-			k, v = c.Next()
+			k, v = c.next()
 		}
-		next = bytes.Clone(k)
 		return nil
 	})
 	if err != nil {
-		return all, append(faults, err), nil
+		return all, append(faults, err), to
 	}
 	return all, faults, next
 }

@@ -150,6 +150,9 @@ func (s *Store) doomed(tx *bolt.Tx, mark uint64, old, excess int64) (all []group
 
 // trimMinutes removes minutes from the front, of hours that have been built.
 func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
+	if keys, _ := s.oldest(tx.Bucket(bucketMinutes), old, excess, math.MaxInt64); len(keys) == 0 {
+		return false, nil
+	}
 	mark, err := readHourMark(tx)
 	if err != nil {
 		return false, err
