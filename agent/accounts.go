@@ -23,7 +23,8 @@ type accounts struct {
 	judges []*design.Judge
 	closed []loads.Minute
 
-	site, zone string // name of the plant, and time zone of its reports
+	site, zone string            // name of the plant, and time zone of its reports
+	units      map[string]string // SI unit of the readings of each tag
 }
 
 // newAccounts returns empty accounts of the plant that the site file with the digest
@@ -62,7 +63,8 @@ type savedAccounts struct {
 	Engine []byte
 	Judges map[string]savedJudge
 
-	Site, Zone string // name of the plant, and time zone of its reports
+	Site, Zone string            // name of the plant, and time zone of its reports
+	Units      map[string]string // SI unit of the readings of each tag, also of former ones
 }
 
 type savedJudge struct {
@@ -80,7 +82,7 @@ func (a *accounts) save() ([]byte, error) {
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
 	}
-	s.Site, s.Zone = a.site, a.zone
+	s.Site, s.Zone, s.Units = a.site, a.zone, a.units
 	var buf bytes.Buffer
 	if err := gob.NewEncoder(&buf).Encode(s); err != nil {
 		return nil, fmt.Errorf("save verdicts: %w", err)
@@ -97,6 +99,11 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 	for i, j := range a.judges {
 		if was, ok := s.Judges[a.cfg.Loads[i].Name]; ok {
 			j.Restore(was.Last, was.Minutes)
+		}
+	}
+	for tag, u := range s.Units {
+		if _, ok := a.units[tag]; !ok && a.units != nil {
+			a.units[tag] = u
 		}
 	}
 	return s.Rules == a.rules, a.engine.Restore(s.Engine)

@@ -12,8 +12,8 @@ import (
 	"errors"
 	"fmt"
 	"log/slog"
+	"maps"
 	"net"
-	"net/http"
 	"os"
 	"path/filepath"
 	"sync/atomic"
@@ -101,7 +101,7 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err != nil {
 		return fmt.Errorf("listen on %q: %w", a.o.Listen, err)
 	}
-	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name })})
+	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name }), units: maps.Clone(books.accounts.units)})
 	if err := leaveAddress(a.o.Data, address{listener.Addr().String(), reports.run}); err != nil {
 		a.o.Log.Warn("reports will not find the agent while it runs", "error", err)
 	}
@@ -111,7 +111,7 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 
 // work runs the three parts. The session outlives the beat, so that the last
 // acknowledgements still go out.
-func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, reports http.Handler) error {
+func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, reports *reports) error {
 	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
 	if a.o.Ready != nil {
 		a.o.Ready(listener.Addr())

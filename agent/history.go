@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"fmt"
@@ -21,10 +22,11 @@ const mostPeriods = 12_000
 // history is what reports are made from.
 type history struct {
 	db      *store.Store
-	site    string         // its name; may be empty
-	zone    *time.Location // of the site; nil where it is not known
-	through func() int64   // event time as committed
-	current []string       // loads that are accounted for now; others have been once
+	site    string            // its name; may be empty
+	zone    *time.Location    // of the site; nil where it is not known
+	through func() int64      // event time as committed
+	current []string          // loads that are accounted for now; others have been once
+	units   map[string]string // SI unit of a tag's readings, where it is known
 }
 
 // report answers q, or gives up when ctx ends.
@@ -88,7 +90,7 @@ func wallClock(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") 
 
 // choose returns the wanted loads, or all, in the order in which they were first known.
 func choose(ids map[string]uint32, wanted []string) ([]string, error) {
-	known := slices.SortedFunc(maps.Keys(ids), func(a, b string) int { return int(ids[a]) - int(ids[b]) })
+	known := inOrder(ids)
 	if len(known) == 0 {
 		return nil, errors.New("the history knows no load yet")
 	}
@@ -96,15 +98,31 @@ func choose(ids map[string]uint32, wanted []string) ([]string, error) {
 		return known, nil
 	}
 	for _, name := range wanted {
-		if _, ok := ids[name]; ok {
-			continue
+		if _, ok := ids[name]; !ok {
+			return nil, unknown("load", name, known)
 		}
-		if guess := near.Names(name, known); len(guess) > 0 {
-			return nil, queryErrorf("load %q is not in the history; did you mean %q?", name, guess[0])
-		}
-		return nil, queryErrorf("load %q is not in the history; there are: %s", name, strings.Join(known, ", "))
 	}
 	return slices.DeleteFunc(known, func(name string) bool { return !slices.Contains(wanted, name) }), nil
+}
+
+// inOrder returns the names in the order in which they were first known.
+func inOrder(ids map[string]uint32) []string {
+	return slices.SortedFunc(maps.Keys(ids), func(a, b string) int { return cmp.Compare(ids[a], ids[b]) })
+}
+
+// mostNames is how many known names an error lists.
+const mostNames = 20
+
+// unknown says that a name is not in the history, and what may have been meant.
+func unknown(kind, name string, known []string) error {
+	if guess := near.Names(name, known); len(guess) > 0 {
+		return queryErrorf("%s %q is not in the history; did you mean %q?", kind, name, guess[0])
+	}
+	list := strings.Join(known[:min(len(known), mostNames)], ", ")
+	if more := len(known) - mostNames; more > 0 {
+		list += fmt.Sprintf(" and %d more", more)
+	}
+	return queryErrorf("%s %q is not in the history; there are: %s", kind, name, list)
 }
 
 // loadAccount is a [LoadReport] in the making.

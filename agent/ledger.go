@@ -53,7 +53,7 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 	if err != nil {
 		return nil, err
 	}
-	a.site, a.zone = s.Name, s.Zone.String()
+	a.site, a.zone, a.units = s.Name, s.Zone.String(), unitsOf(s)
 	l := &ledger{accounts: a, store: db, log: log, saved: now}
 	if l.tagIDs, err = db.IDs("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
 		return nil, err
@@ -108,6 +108,14 @@ func names[T any](all []T, name func(T) string) []string {
 		out[i] = name(x)
 	}
 	return out
+}
+
+func unitsOf(s *site.Site) map[string]string {
+	units := make(map[string]string, len(s.Tags))
+	for _, t := range s.Tags {
+		units[t.Name] = t.Unit.Dimension.SI()
+	}
+	return units
 }
 
 // resume restores the last checkpoint and puts the beats since through again. A

@@ -4,7 +4,6 @@ import (
 	"context"
 	"crypto/rand"
 	"encoding/json"
-	"errors"
 	"net/http"
 	"time"
 )
@@ -33,7 +32,7 @@ func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	w.Header().Set(runHeader, s.run)
 	q, err := queryOf(r.URL.Query())
 	if err != nil {
-		http.Error(w, err.Error(), http.StatusBadRequest)
+		refuse(w, err)
 		return
 	}
 	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
@@ -41,16 +40,8 @@ func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	// Longer than other answers may take; where it cannot be set, there is no bound.
 	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(reportTime + 20*time.Second))
 	report, err := s.answer(ctx, q)
-	var wrong *QueryError
-	switch {
-	case errors.As(err, &wrong):
-		http.Error(w, err.Error(), http.StatusBadRequest)
-		return
-	case errors.Is(err, errNoRecord):
-		http.Error(w, err.Error(), http.StatusNotFound)
-		return
-	case err != nil:
-		http.Error(w, err.Error(), http.StatusInternalServerError)
+	if err != nil {
+		refuse(w, err)
 		return
 	}
 	w.Header().Set("Content-Type", "application/json")

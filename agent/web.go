@@ -23,8 +23,8 @@ const Safety = `Heatreeve informs. It is no safety function, interlock or alarm 
 no billing meter. Site codes, the plant's own protection and licensed people
 come first.`
 
-// handler serves the metrics, the two answers that supervisors ask for, and reports.
-func handler(reg *prometheus.Registry, health *health, reports http.Handler, log *slog.Logger) http.Handler {
+// handler serves the metrics, the two answers that supervisors ask for, reports and exports.
+func handler(reg *prometheus.Registry, health *health, reports *reports, log *slog.Logger) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", promhttp.HandlerFor(reg, promhttp.HandlerOpts{
 		Registry:            reg,
@@ -36,6 +36,7 @@ func handler(reg *prometheus.Registry, health *health, reports http.Handler, log
 	mux.HandleFunc("GET /healthz", answer(health.alive))
 	mux.HandleFunc("GET /readyz", answer(health.ready))
 	mux.Handle("GET "+reportPath, reports)
+	mux.Handle("GET "+exportPath, newExports(reports))
 	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
 		w.Header().Set("Content-Type", "text/plain; charset=utf-8")
 		front(w, health.latest.Load(), health.now())
@@ -59,7 +60,7 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 		}
 		fmt.Fprintln(w)
 	}
-	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n\n%s\n", Safety)
+	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/export   readings of a tag or minutes of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
 }
 
 // answer turns a list of what is wrong into 200 or 503, a line a fault.

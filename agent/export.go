@@ -1,0 +1,170 @@
+package agent
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"iter"
+	"math"
+	"strings"
+	"time"
+
+	"heatreeve/store"
+)
+
+// export is one in the making.
+type export struct {
+	db       *store.Store
+	what     string // as in "reading of tag ..."
+	id       uint32
+	minutes  bool // of a load, rather than readings of a tag
+	json     bool
+	columns  []string
+	from, to int64
+	through  int64 // how far the history goes
+	zone     *time.Location
+
+	rows    int64
+	damaged int   // parts that cannot be read
+	damage  error // the first of them
+}
+
+// minuteColumns are those of a load's minutes.
+var minuteColumns = []string{
+	"start", "measured_s", "missing_s", "given_J", "taken_J",
+	"duty_W", "lowest_duty_W", "highest_duty_W", "duty_uncertainty_W",
+	"mass_flow_kg_per_s", "inlet_K", "outlet_K", "pressure_Pa",
+}
+
+const (
+	readingTime = "2006-01-02T15:04:05.000000000Z"
+	minuteTime  = "2006-01-02T15:04:05Z"
+)
+
+// valueColumn names the values of a tag by their SI unit.
+func valueColumn(unit string) string {
+	switch unit {
+	case "":
+		return "value_SI" // the history does not say
+	case "1":
+		return "value_ratio"
+	}
+	return "value_" + strings.ReplaceAll(unit, "/", "_per_")
+}
+
+// export finds what s asks for.
+func (h *history) export(s Selection) (*export, error) {
+	if err := s.check(); err != nil {
+		return nil, err
+	}
+	x := &export{db: h.db, minutes: s.Load != "", json: s.Format == "json", through: h.through(), zone: time.UTC}
+	if h.zone != nil {
+		x.zone = h.zone
+	}
+	kind, name, of := "tag", s.Tag, "reading"
+	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), "stamped"}; x.minutes {
+		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns
+	}
+	x.what = fmt.Sprintf("%s of %s %q", of, kind, name)
+	ids, err := h.db.Names(kind)
+	if err != nil {
+		return nil, err
+	}
+	var ok bool
+	if x.id, ok = ids[name]; !ok {
+		return nil, unknown(kind, name, inOrder(ids))
+	}
+	x.from, x.to, err = s.span(h.zone)
+	return x, err
+}
+
+// until is the end of what there can be to export.
+func (x *export) until() time.Time { return time.Unix(0, min(x.to, x.through)).UTC() }
+
+// write writes all rows to w, or as many as there are until ctx ends. What cannot be read
+// is passed over, and counted.
+func (x *export) write(ctx context.Context, w io.Writer) error {
+	r := newRows(w, x.json, x.columns)
+	var err error
+	if x.minutes {
+		err = each(ctx, x, r, x.db.Minutes(x.id, x.from, x.to), minuteRow)
+	} else {
+		err = each(ctx, x, r, x.db.Readings(x.id, x.from, x.to), readingRow)
+	}
+	err = errors.Join(err, r.flush())
+	switch x.rows = r.count; {
+	case err != nil:
+		return err
+	case x.rows == 0 && x.damaged == 0:
+		return x.nothing()
+	}
+	return nil
+}
+
+// nothing says that there is no row.
+func (x *export) nothing() error {
+	at := func(ns int64) string { return wallClock(time.Unix(0, ns).In(x.zone)) }
+	err := fmt.Errorf("%w: no %s", errNoRecord, x.what)
+	if x.from != math.MinInt64 {
+		err = fmt.Errorf("%w from %s", err, at(x.from))
+	}
+	if x.to != math.MaxInt64 {
+		err = fmt.Errorf("%w to %s", err, at(x.to))
+	}
+	return fmt.Errorf("%w; it goes up to %s", err, at(x.through))
+}
+
+// whole is an error where not all could be read.
+func (x *export) whole() error {
+	if x.damaged == 0 {
+		return nil
+	}
+	return fmt.Errorf("%d parts of the history cannot be read and are not in the export; the first: %w", x.damaged, x.damage)
+}
+
+// rowsALook is how many rows go out before ctx is looked at again.
+const rowsALook = 256
+
+func each[T any](ctx context.Context, x *export, r *rows, all iter.Seq2[T, error], add func(*rows, *T)) error {
+	for v, err := range all {
+		switch {
+		case errors.Is(err, store.ErrDamaged):
+			if x.damaged++; x.damage == nil {
+				x.damage = err
+			}
+			continue
+		case err != nil:
+			return err
+		}
+		add(r, &v)
+		if err := r.end(); err != nil {
+			return err
+		}
+		if r.count%rowsALook == 1 && ctx.Err() != nil {
+			return ctx.Err()
+		}
+	}
+	return ctx.Err()
+}
+
+func readingRow(r *rows, v *store.Reading) {
+	r.instant(v.At, readingTime)
+	r.number(v.Value)
+	r.truth(v.Stamped)
+}
+
+// minuteRow leaves out the means of a minute in which nothing was measured.
+func minuteRow(r *rows, m *store.Minute) {
+	r.instant(m.Start, minuteTime)
+	for _, x := range [...]float64{m.Measured, m.Missing, m.Given, m.Taken} {
+		r.number(x)
+	}
+	for _, x := range [...]float64{m.Duty, m.DutyMin, m.DutyMax, m.DutyUncertainty, m.Flow, m.Inlet, m.Outlet, m.Pressure} {
+		if m.Measured > 0 {
+			r.number(x)
+		} else {
+			r.none()
+		}
+	}
+}

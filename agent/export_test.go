@@ -1,0 +1,313 @@
+package agent
+
+import (
+	"bytes"
+	"context"
+	"encoding/csv"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"iter"
+	"log/slog"
+	"math"
+	"net/http"
+	"net/http/httptest"
+	"path/filepath"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+	"time"
+
+	"heatreeve/store"
+)
+
+// noted writes readings of two tags, n of each: one a second, some late, some by arrival.
+func noted(t testing.TB, path string, n int) (*store.Store, []store.Reading) {
+	t.Helper()
+	db, err := store.Open(path, store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Cleanup(func() { db.Close() })
+	ids, err := db.IDs("tag", []string{"TT-1", "FT-1"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	var all []store.Reading
+	var b store.Batch
+	for k := range n {
+		at := week.UnixNano() + int64(k)*int64(time.Second) + int64(k%3)*123_456_789
+		if k%10 == 9 {
+			at -= int64(5 * time.Second)
+		}
+		r := store.Reading{Tag: ids[0], At: at, Value: 273.15 + math.Round(1000*math.Sin(float64(k)))/10, Stamped: k%4 != 0}
+		all = append(all, r)
+		b.Beats = append(b.Beats, store.Beat{Through: week.UnixNano() + int64(k)*int64(time.Second), Readings: []store.Reading{r, {Tag: ids[1], At: at, Value: 1e-7 * float64(k)}}})
+		if len(b.Beats) == 600 || k == n-1 {
+			b.Checkpoint = []byte{}
+			if err := db.Commit(b); err != nil {
+				t.Fatal(err)
+			}
+			b.Beats = nil
+		}
+	}
+	return db, all
+}
+
+func exported(h history, s Selection) (string, error) {
+	x, err := h.export(s)
+	if err != nil {
+		return "", err
+	}
+	var b bytes.Buffer
+	err = errors.Join(x.write(context.Background(), &b), x.whole())
+	return b.String(), err
+}
+
+// Every reading comes out of either form with the same bits that went in.
+func TestExportOfReadings(t *testing.T) {
+	db, all := noted(t, filepath.Join(t.TempDir(), HistoryFile), 5000)
+	h := historyIn(t, db, "Europe/Dublin")
+	h.units = map[string]string{"TT-1": "K"}
+	from, to := week.Add(10*time.Minute), week.Add(70*time.Minute)
+	for _, s := range []Selection{{Tag: "TT-1"}, {Tag: "TT-1", From: "2026-10-24T00:10", To: "2026-10-24T01:10"}, {Tag: "TT-1", From: "2026-10-23T23:10Z", To: "2026-10-24T04:40", Zone: "Asia/Kolkata"}} {
+		want := all
+		if s.From != "" {
+			end := to
+			if s.Zone != "" {
+				end = week.Add(10 * time.Minute) // nothing left
+			}
+			want = slices.DeleteFunc(slices.Clone(all), func(r store.Reading) bool { return r.At < from.UnixNano() || r.At >= end.UnixNano() })
+		}
+		text, err := exported(h, s)
+		if len(want) == 0 {
+			var wrong *QueryError
+			if !errors.As(err, &wrong) || !strings.Contains(err.Error(), "is not after from") {
+				t.Errorf("%+v: %v", s, err)
+			}
+			continue
+		}
+		if err != nil {
+			t.Fatalf("%+v: %v", s, err)
+		}
+		if got := fromCSV(t, text, all[0].Tag); !slices.Equal(got, want) {
+			t.Errorf("%+v: %d readings by csv, not the %d that there are", s, len(got), len(want))
+		}
+		s.Format = "json"
+		if text, err = exported(h, s); err != nil {
+			t.Fatal(err)
+		}
+		if got := fromJSON(t, text, all[0].Tag); !slices.Equal(got, want) {
+			t.Errorf("%+v: %d readings by json, not the %d that there are", s, len(got), len(want))
+		}
+	}
+}
+
+func fromCSV(t *testing.T, text string, tag uint32) (all []store.Reading) {
+	t.Helper()
+	if strings.Count(text, "\r\n") != strings.Count(text, "\n") {
+		t.Error("not all lines end as RFC 4180 says")
+	}
+	records, err := csv.NewReader(strings.NewReader(text)).ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !slices.Equal(records[0], []string{"time", "value_K", "stamped"}) {
+		t.Errorf("header %q", records[0])
+	}
+	for _, f := range records[1:] {
+		at, err := time.Parse("2006-01-02T15:04:05.000000000Z", f[0])
+		x, err2 := strconv.ParseFloat(f[1], 64)
+		stamped, err3 := strconv.ParseBool(f[2])
+		if err := errors.Join(err, err2, err3); err != nil {
+			t.Fatal(err)
+		}
+		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: x, Stamped: stamped})
+	}
+	return all
+}
+
+func fromJSON(t *testing.T, text string, tag uint32) (all []store.Reading) {
+	t.Helper()
+	for line := range strings.Lines(text) {
+		var v struct {
+			Time    time.Time `json:"time"`
+			Value   *float64  `json:"value_K"`
+			Stamped *bool     `json:"stamped"`
+		}
+		if err := json.Unmarshal([]byte(line), &v); err != nil || v.Value == nil || v.Stamped == nil {
+			t.Fatalf("%s: %v", line, err)
+		}
+		all = append(all, store.Reading{Tag: tag, At: v.Time.UnixNano(), Value: *v.Value, Stamped: *v.Stamped})
+	}
+	return all
+}
+
+// Minutes have means where something was measured, and sums always.
+func TestExportOfMinutes(t *testing.T) {
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 3000, func(load string, k int) (store.Minute, bool) {
+		m, _ := ramp(load, k)
+		m.Flow, m.Inlet, m.Outlet, m.Pressure = 2.5, 353.15, 333.15, 3e5
+		if k == 61 {
+			m = store.Minute{Missing: 60}
+		}
+		return m, k != 62
+	}, "other", "ramp")
+	h := historyIn(t, db, "UTC")
+	text, err := exported(h, Selection{Load: "ramp", From: "2026-10-24T00:00", To: "2026-10-24T00:04"})
+	want := "start,measured_s,missing_s,given_J,taken_J,duty_W,lowest_duty_W,highest_duty_W,duty_uncertainty_W,mass_flow_kg_per_s,inlet_K,outlet_K,pressure_Pa\r\n" +
+		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000\r\n" +
+		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,\r\n" +
+		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000\r\n"
+	if err != nil || text != want {
+		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
+	}
+	text, err = exported(h, Selection{Load: "ramp", From: "2026-10-24T00:01", To: "2026-10-24T00:02", Format: "json"})
+	want = `{"start":"2026-10-24T00:01:00Z","measured_s":0,"missing_s":60,"given_J":0,"taken_J":0,"duty_W":null,"lowest_duty_W":null,"highest_duty_W":null,"duty_uncertainty_W":null,"mass_flow_kg_per_s":null,"inlet_K":null,"outlet_K":null,"pressure_Pa":null}` + "\n"
+	if err != nil || text != want {
+		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
+	}
+	if text, err = exported(h, Selection{Load: "ramp"}); err != nil || strings.Count(text, "\n") != 3000 {
+		t.Errorf("all: %d lines, %v; want a header and 2999", strings.Count(text, "\n"), err)
+	}
+}
+
+// A number is written so that it is read as the same, and what is none has no number.
+func TestRowNumbers(t *testing.T) {
+	for x, want := range map[float64]string{0: "0", -0.5: "-0.5", 353.15: "353.15", 1e-6: "0.000001", 1.5e-7: "1.5e-07", 123456789: "123456789", 1e21: "1e+21", math.Inf(1): "", math.NaN(): ""} {
+		var b bytes.Buffer
+		r := newRows(&b, false, []string{"x"})
+		r.number(x)
+		if err := errors.Join(r.end(), r.flush()); err != nil || b.String() != "x\r\n"+want+"\r\n" {
+			t.Errorf("%v is %q, %v; want %q", x, &b, err, want)
+		}
+	}
+}
+
+func TestValueColumn(t *testing.T) {
+	for unit, want := range map[string]string{"K": "value_K", "Pa": "value_Pa", "kg/s": "value_kg_per_s", "m3/s": "value_m3_per_s", "mol/s": "value_mol_per_s", "1": "value_ratio", "": "value_SI"} {
+		if got := valueColumn(unit); got != want {
+			t.Errorf("%q: %q, want %q", unit, got, want)
+		}
+	}
+}
+
+// What is wrong is told by the page and to the one who extracts alike, before anything is
+// written.
+func TestExportRefusals(t *testing.T) {
+	dir := t.TempDir()
+	db, _ := noted(t, filepath.Join(dir, HistoryFile), 100)
+	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
+	server := httptest.NewServer(s)
+	defer server.Close()
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+		t.Fatal(err)
+	}
+	for _, tt := range []struct {
+		Selection
+		status int
+		says   string
+	}{
+		{Selection{}, 400, "tag or load must be given"},
+		{Selection{Tag: "TT-1", Load: "x"}, 400, `tag "TT-1" and load "x": an export is of one of them`},
+		{Selection{Tag: "TT-1", Format: "xml"}, 400, `format "xml": allowed are csv, json`},
+		{Selection{Tag: "tt-1"}, 400, `tag "tt-1" is not in the history; did you mean "TT-1"?`},
+		{Selection{Tag: "pressure"}, 400, `tag "pressure" is not in the history; there are: TT-1, FT-1`},
+		{Selection{Load: "boiler"}, 400, `load "boiler" is not in the history`},
+		{Selection{Tag: "TT-1", From: "soon"}, 400, `from "soon" is no date`},
+		{Selection{Tag: "TT-1", To: "2026-10-25T01:30"}, 400, `to "2026-10-25T01:30" comes twice`},
+		{Selection{Tag: "TT-1", Zone: "Dublin"}, 400, `zone "Dublin" is not known`},
+		{Selection{Tag: "TT-1", From: "2026-11-01", To: "2026-12-01"}, 404, `the history holds no record: no reading of tag "TT-1" from 2026-11-01 00:00 +00:00 to 2026-12-01 00:00 +00:00; it goes up to 2026-10-24 00:01 +01:00`},
+	} {
+		w := httptest.NewRecorder()
+		s.ServeHTTP(w, httptest.NewRequest("GET", exportPath+"?"+tt.values().Encode(), nil))
+		if w.Code != tt.status || !strings.Contains(w.Body.String(), tt.says) {
+			t.Errorf("%+v: status %d, %s; want %d, ...%q...", tt.Selection, w.Code, w.Body, tt.status, tt.says)
+		}
+		var b bytes.Buffer
+		err := Extract(t.Context(), dir, tt.Selection, &b, func(Progress) { t.Errorf("%+v: progress", tt.Selection) })
+		var wrong *QueryError
+		if err == nil || !strings.Contains(err.Error(), tt.says) || errors.As(err, &wrong) != (tt.status == 400) || b.Len() > 0 {
+			t.Errorf("%+v: %v, %d bytes", tt.Selection, err, b.Len())
+		}
+	}
+	for query, want := range map[string]string{"tag=TT-1&colour=red": "colour is no parameter", "tag=TT-1&tag=FT-1": "tag is given 2 times"} {
+		w := httptest.NewRecorder()
+		s.ServeHTTP(w, httptest.NewRequest("GET", exportPath+"?"+query, nil))
+		if w.Code != 400 || !strings.Contains(w.Body.String(), want) {
+			t.Errorf("%s: status %d, %s", query, w.Code, w.Body)
+		}
+	}
+}
+
+// Many known names are not all told.
+func TestUnknownAmongMany(t *testing.T) {
+	var known []string
+	for i := range 4000 {
+		known = append(known, fmt.Sprintf("XX-%05d", i))
+	}
+	if err := unknown("tag", "pressure", known); !strings.HasSuffix(err.Error(), "XX-00018, XX-00019 and 3980 more") {
+		t.Error(err)
+	}
+}
+
+// Damaged parts are passed over, counted and told; any other error ends it.
+func TestExportOfDamage(t *testing.T) {
+	torn := fmt.Errorf("%w: here", store.ErrDamaged)
+	all := func(errs ...error) iter.Seq2[store.Reading, error] {
+		return func(yield func(store.Reading, error) bool) {
+			for i, err := range errs {
+				if !yield(store.Reading{At: int64(i)}, err) {
+					return
+				}
+			}
+		}
+	}
+	var b bytes.Buffer
+	x := &export{}
+	r := newRows(&b, false, []string{"time", "value_K", "stamped"})
+	if err := each(t.Context(), x, r, all(nil, torn, nil, torn), readingRow); err != nil || r.count != 2 {
+		t.Errorf("%d rows, %v", r.count, err)
+	}
+	if err := x.whole(); !errors.Is(err, store.ErrDamaged) || !strings.HasPrefix(err.Error(), "2 parts of the history cannot be read") {
+		t.Error(err)
+	}
+	if err := each(t.Context(), x, r, all(nil, http.ErrServerClosed, nil), readingRow); err != http.ErrServerClosed || r.count != 3 {
+		t.Errorf("%d rows, %v", r.count, err)
+	}
+}
+
+// The units of a history stay known after their tags have left the site.
+func TestUnitsOutliveTheirTags(t *testing.T) {
+	books := func(db *store.Store, tags ...string) *ledger {
+		t.Helper()
+		s := parsed(t, benchSite)
+		for _, name := range tags {
+			extra := s.Tags[0]
+			extra.Name = name
+			s.Tags = append(s.Tags, extra)
+		}
+		l, err := openLedger(s, db, slog.New(slog.DiscardHandler), week)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return l
+	}
+	db, err := store.Open(filepath.Join(t.TempDir(), HistoryFile), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	books(db, "TT-gone")
+	if unit := books(db).accounts.units["TT-gone"]; unit != "K" {
+		t.Errorf("the unit of a former tag is %q, want K", unit)
+	}
+	if err := db.Commit(store.Batch{Beats: []store.Beat{{Through: week.UnixNano()}}}); err != nil {
+		t.Fatal(err)
+	}
+	h, err := historyOf(db)
+	if err != nil || h.units["TT-gone"] != "K" || len(h.units) != len(parsed(t, benchSite).Tags)+1 {
+		t.Errorf("the file knows %v, %v", h.units, err)
+	}
+}

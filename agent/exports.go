@@ -1,0 +1,111 @@
+package agent
+
+import (
+	"context"
+	"errors"
+	"net/http"
+	"strconv"
+	"time"
+)
+
+const (
+	exportPath = "/export"
+	// untilHeader tells to where an export can go.
+	untilHeader = "Heatreeve-Until"
+	// rowsTrailer follows an export that has come to its end, and tells its rows;
+	// damageTrailer what of the history could not be read.
+	rowsTrailer   = "Heatreeve-Rows"
+	damageTrailer = "Heatreeve-Damage"
+	// stallTime is how long who asked may take nothing before the export ends.
+	stallTime = 10 * time.Minute
+)
+
+// exports gives readings and records out while the agent runs, one export at a time. It
+// reads a group of records at a time, each in a short transaction, and holds none while
+// it waits for who asked.
+type exports struct {
+	history history
+	run     string        // names this run of the agent
+	turn    chan struct{} // holds one while an export is under way
+}
+
+func newExports(r *reports) *exports {
+	return &exports{history: r.history, run: r.run, turn: make(chan struct{}, 1)}
+}
+
+func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
+	w.Header().Set(runHeader, s.run)
+	q, err := selectionOf(r.URL.Query())
+	if err != nil {
+		refuse(w, err)
+		return
+	}
+	x, err := s.history.export(q)
+	if err != nil {
+		refuse(w, err)
+		return
+	}
+	select {
+	case s.turn <- struct{}{}:
+		defer func() { <-s.turn }()
+		x.serve(r.Context(), w)
+	default:
+		http.Error(w, "another export is under way; try again when it has ended", http.StatusServiceUnavailable)
+	}
+}
+
+// serve writes the answer. One that breaks off has no proper end, so that nobody takes it
+// for whole.
+func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
+	body := &steady{ResponseWriter: w, control: http.NewResponseController(w)}
+	body.extend()
+	kind := "text/csv; charset=utf-8; header=present"
+	if x.json {
+		kind = "application/jsonl"
+	}
+	w.Header().Set("Content-Type", kind)
+	w.Header().Set(untilHeader, x.until().Format(time.RFC3339Nano))
+	w.Header().Set("Trailer", rowsTrailer+", "+damageTrailer)
+	err := x.write(ctx, body)
+	switch {
+	case err != nil && body.begun:
+		panic(http.ErrAbortHandler)
+	case err != nil:
+		w.Header().Del("Trailer")
+		refuse(w, err)
+		return
+	}
+	w.Header().Set(rowsTrailer, strconv.FormatInt(x.rows, 10))
+	if err := x.whole(); err != nil {
+		w.Header().Set(damageTrailer, err.Error())
+	}
+}
+
+// steady is an answer that may take as long as it gets on.
+type steady struct {
+	http.ResponseWriter
+	control *http.ResponseController
+	begun   bool
+}
+
+func (s *steady) Write(p []byte) (int, error) {
+	s.begun = true
+	s.extend()
+	return s.ResponseWriter.Write(p)
+}
+
+// extend grants another while; where that cannot be set, there is no bound.
+func (s *steady) extend() { _ = s.control.SetWriteDeadline(time.Now().Add(stallTime)) }
+
+// refuse says why there is no answer.
+func refuse(w http.ResponseWriter, err error) {
+	status := http.StatusInternalServerError
+	var wrong *QueryError
+	switch {
+	case errors.As(err, &wrong):
+		status = http.StatusBadRequest
+	case errors.Is(err, errNoRecord):
+		status = http.StatusNotFound
+	}
+	http.Error(w, err.Error(), status)
+}
