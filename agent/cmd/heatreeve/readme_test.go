@@ -126,6 +126,7 @@ func TestReadmeTranscripts(t *testing.T) {
 		for _, session := range strings.Split(block, "\n$ heatreeve ")[1:] {
 			line, want, _ := strings.Cut(session, "\n")
 			status, out, errs := invoke(inHistory(t, words(line))...)
+			out = strings.ReplaceAll(out, "\r\n", "\n") // of csv
 			if status != exitGood || errs != "" || strings.TrimSpace(out) != strings.TrimSpace(want) {
 				t.Errorf("heatreeve %s: status %d, %s, prints\n%s\nthe README shows\n%s", line, status, errs, out, want)
 			}

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"log/slog"
+	"math"
 	"net"
 	"path/filepath"
 	"slices"
@@ -57,7 +58,14 @@ func keep(t *testing.T) string {
 	if err != nil {
 		t.Fatal(err)
 	}
-	b := store.Batch{Beats: []store.Beat{{Through: keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano()}}}
+	tags, err := db.Names("tag")
+	if err != nil {
+		t.Fatal(err)
+	}
+	b := store.Batch{Beats: []store.Beat{{
+		Through:  keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano(),
+		Readings: keptReadings(tags["TT-201"]),
+	}}}
 	for k := range keptMinutes {
 		for i := range s.Loads {
 			if m, ok := keptMinute(t, plant, &s.Loads[i], k); ok {
@@ -72,7 +80,17 @@ func keep(t *testing.T) string {
 	return dir
 }
 
-// keptMinute is what a load moves in minute k, at 0.8 % of standard uncertainty.
+// keptReadings are those of a temperature that swings by 0.3 K about 130 °C, four a minute.
+func keptReadings(tag uint32) (all []store.Reading) {
+	for k := range 4 * keptMinutes {
+		at := keptFrom.Add(time.Duration(k)*15*time.Second + 250*time.Millisecond)
+		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: 403.15 + math.Round(30*math.Sin(float64(k)/7))/100, Stamped: k%500 != 499})
+	}
+	return all
+}
+
+// keptMinute is what a load moves in minute k, to the watt, at 0.8 % of standard
+// uncertainty, and between which temperatures where it is the hot water.
 func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m store.Minute, ok bool) {
 	t.Helper()
 	at := keptFrom.Add(time.Duration(k) * time.Minute)
@@ -80,7 +98,11 @@ func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m sto
 	if err != nil {
 		t.Fatal(err)
 	}
+	duty = math.Round(duty)
 	m = store.Minute{Start: at.UnixNano(), Measured: 60, Duty: duty, DutyMin: 0.99 * duty, DutyMax: 1.01 * duty, DutyUncertainty: 0.008 * duty}
+	if l.Name == "hot-water" { // by 169.223 kJ/kg
+		m.Flow, m.Inlet, m.Outlet, m.Pressure = math.Round(duty/169.223)/1000, 403.15, 363.15, 700e3
+	}
 	if l.Stream.Gives {
 		m.Given = 60 * duty
 	} else {
