@@ -3,6 +3,7 @@ package store
 import (
 	"bytes"
 	"errors"
+	"log/slog"
 	"math/rand/v2"
 	"os"
 	"path/filepath"
@@ -210,6 +211,37 @@ func testPowerCut(t *testing.T, l *diskLog, compare func(*testing.T, *Store, uin
 	}
 	if last < 700 || between < 20 {
 		t.Errorf("%d epochs, %d cuts kept a commit that had not returned", last+1, between)
+	}
+}
+
+// TestPowerCutAtUpgrade cuts the power while a file of the first layout is brought to this
+// one: it opens, and all that it holds is there.
+func TestPowerCutAtUpgrade(t *testing.T) {
+	path := layout1(t)
+	db, err := openChecked(path, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	s := &Store{path: path, db: db, log: slog.New(slog.DiscardHandler)}
+	l := watch(t, db)
+	if err := errors.Join(s.upgrade(), db.Close()); err != nil {
+		t.Fatal(err)
+	}
+	rng := rand.New(rand.NewPCG(13, 14))
+	for epoch, writes := range l.epochs {
+		for range 20 {
+			cut := l.until(epoch)
+			for i := range writes {
+				cut = writes[i].apply(cut, func() bool { return rng.IntN(2) == 0 })
+			}
+			if n, err := survivor(t, path, cut, testNumbered); err != nil || n != 600 {
+				t.Fatalf("cut in epoch %d: the history ends with %d, %v", epoch, n, err)
+			}
+			boltCheck(t, path)
+		}
+	}
+	if len(l.epochs) != 2 {
+		t.Errorf("the upgrade took %d epochs, want one transaction", len(l.epochs))
 	}
 }
 

@@ -133,6 +133,9 @@ func FuzzParsers(f *testing.F) {
 	key := minuteKey(60, 33)
 	f.Add(key, appendMinutes(nil, key, []Minute{{Start: 60, Load: 33, Duty: 5}, {Start: 60, Load: 40, Given: 1}}))
 	f.Add(key, []byte("\x01\x02\x00\x00\x00\x00\x00\x3f\xf0"))
+	hour := minuteKey(hourNanos, 33)
+	hours := appendHours(nil, hour, []Hour{{Load: 33, Start: hourNanos, Minutes: 60, Duty: 5}})
+	f.Add(hour, hours[:len(hours)-4])
 	f.Add([]byte{}, appendRegisters(nil, []Register{{Load: 3, Given: 1}}))
 	f.Add((&span{first: 1, last: 2}).name(), []byte{})
 	f.Add([]byte{}, make([]byte, 24))
@@ -149,13 +152,19 @@ func FuzzParsers(f *testing.F) {
 				break
 			}
 		}
-		// Under a checksum that fits, the inside of a minute is reached.
+		// Under a checksum that fits, the inside of a minute and an hour is reached.
 		if len(key) == 12 {
 			value = binary.LittleEndian.AppendUint32(slices.Clone(value), checksum(key, value))
 			if all, err := parseMinutes(nil, key, value, anyLoad); err == nil {
 				again, err := parseMinutes(nil, key, appendMinutes(nil, key, all), anyLoad)
 				if err != nil || !sameMinutes(again, all) {
 					t.Errorf("minutes %+v were read again as %+v, %v", all, again, err)
+				}
+			}
+			if all, err := parseHours(nil, key, value, anyLoad); err == nil {
+				again, err := parseHours(nil, key, appendHours(nil, key, all), anyLoad)
+				if err != nil || !slices.Equal(appendHours(nil, key, again), appendHours(nil, key, all)) || len(again) != len(all) {
+					t.Errorf("hours %+v were read again as %+v, %v", all, again, err)
 				}
 			}
 		}

@@ -262,7 +262,8 @@ func TestFull(t *testing.T) {
 // TestRootStaysOnePage commits all there is in any number of loads. Only while the
 // root is one page does a small commit write two.
 func TestRootStaysOnePage(t *testing.T) {
-	s := newStore(t, Options{})
+	s := newStore(t, Options{BeatAge: time.Minute})
+	s.sealing.enough = 10_000
 	for n := range uint64(60) {
 		if _, err := s.ID("load", strings.Repeat("x", int(n)*3)); err != nil {
 			t.Fatal(err)
@@ -282,6 +283,9 @@ func TestRootStaysOnePage(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
+	}
+	if blocks, _ := sealedGroups(t, s); blocks == 0 {
+		t.Error("nothing was sealed")
 	}
 }
 
