@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"net/http"
+	"slices"
 	"strconv"
 	"time"
 )
@@ -34,7 +35,7 @@ func newExports(r *reports) *exports {
 }
 
 func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	w.Header().Set(runHeader, s.run)
+	tellRun(w, r, s.run)
 	q, err := selectionOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
@@ -57,7 +58,7 @@ func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 // serve writes the answer. One that breaks off has no proper end, so that nobody takes it
 // for whole.
 func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
-	body := &steady{ResponseWriter: w, control: http.NewResponseController(w)}
+	body := &steady{ResponseWriter: w, control: http.NewResponseController(w), stall: stallTime}
 	body.extend()
 	kind := "text/csv; charset=utf-8; header=present"
 	if x.json {
@@ -81,21 +82,36 @@ func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
 	}
 }
 
-// steady is an answer that may take as long as it gets on.
+// steady is an answer that may take as long as it gets on, and no longer than to its end
+// where it has one. It goes out in pieces, each of which must be taken within stall.
 type steady struct {
 	http.ResponseWriter
 	control *http.ResponseController
+	stall   time.Duration
+	end     time.Time
 	begun   bool
 }
 
-func (s *steady) Write(p []byte) (int, error) {
+func (s *steady) Write(p []byte) (n int, err error) {
 	s.begun = true
-	s.extend()
-	return s.ResponseWriter.Write(p)
+	for piece := range slices.Chunk(p, rowsAPiece) {
+		s.extend()
+		k, err := s.ResponseWriter.Write(piece)
+		if n += k; err != nil {
+			return n, err
+		}
+	}
+	return n, nil
 }
 
 // extend grants another while; where that cannot be set, there is no bound.
-func (s *steady) extend() { _ = s.control.SetWriteDeadline(time.Now().Add(stallTime)) }
+func (s *steady) extend() {
+	until := time.Now().Add(s.stall)
+	if !s.end.IsZero() && until.After(s.end) {
+		until = s.end
+	}
+	_ = s.control.SetWriteDeadline(until)
+}
 
 // refuse says why there is no answer.
 func refuse(w http.ResponseWriter, err error) {

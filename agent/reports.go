@@ -10,53 +10,75 @@ import (
 
 const (
 	reportPath = "/report"
-	// runHeader names the run of the agent that answers.
+	// runHeader names the run of the agent that answers. Who sends it along with what it
+	// asks is told at once, ahead of the answer, by a status 102 with that header.
 	runHeader = "Heatreeve-Run"
 	// reportTime bounds how long one report may take.
 	reportTime = 2 * time.Minute
+	// reportStall is how long who asked for a report may take nothing of it.
+	reportStall = 10 * time.Second
+	// reportsAtATime bounds how many queries there are: one in the making or on its way,
+	// and those that wait for their turn.
+	reportsAtATime = 4
 )
 
 // reports answers queries while the agent runs, one at a time. It only reads, in
-// short transactions: nothing waits for it but the next query.
+// short transactions: nothing waits for it but the next query. A report keeps its turn until
+// it has been taken, so that there is never more than one in memory.
 type reports struct {
 	history history
 	run     string        // names this run of the agent
-	turn    chan struct{} // holds one while a report is in the making
+	turn    chan struct{} // holds one while a report is in the making or on its way
+	queue   chan struct{} // holds one a query
+	stall   time.Duration
 }
 
 func newReports(h history) *reports {
-	return &reports{history: h, run: rand.Text(), turn: make(chan struct{}, 1)}
+	return &reports{history: h, run: rand.Text(), turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
 }
 
 func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	w.Header().Set(runHeader, s.run)
+	tellRun(w, r, s.run)
 	q, err := queryOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
 		return
 	}
+	select {
+	case s.queue <- struct{}{}:
+		defer func() { <-s.queue }()
+	default:
+		http.Error(w, "other reports are in the making; try again in a while", http.StatusServiceUnavailable)
+		return
+	}
 	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
 	defer cancel()
 	// Longer than other answers may take; where it cannot be set, there is no bound.
-	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(reportTime + 20*time.Second))
-	report, err := s.answer(ctx, q)
+	control := http.NewResponseController(w)
+	_ = control.SetWriteDeadline(time.Now().Add(reportTime + s.stall))
+	select {
+	case s.turn <- struct{}{}:
+		defer func() { <-s.turn }()
+	case <-ctx.Done():
+		http.Error(w, "other reports took all the time; try again in a while", http.StatusServiceUnavailable)
+		return
+	}
+	report, err := s.history.report(ctx, q)
 	if err != nil {
 		refuse(w, err)
 		return
 	}
 	w.Header().Set("Content-Type", "application/json")
-	e := json.NewEncoder(w)
+	e := json.NewEncoder(&steady{ResponseWriter: w, control: control, stall: s.stall, end: time.Now().Add(reportTime)})
 	e.SetEscapeHTML(false)
 	_ = e.Encode(report) // who asked has gone
+	_ = control.Flush()  // what is kept back is to be taken within the turn too
 }
 
-// answer makes the report when it is its turn.
-func (s *reports) answer(ctx context.Context, q Query) (*Report, error) {
-	select {
-	case s.turn <- struct{}{}:
-		defer func() { <-s.turn }()
-		return s.history.report(ctx, q)
-	case <-ctx.Done():
-		return nil, ctx.Err()
+// tellRun names the run in the answer, and ahead of it to those who look for that run.
+func tellRun(w http.ResponseWriter, r *http.Request, run string) {
+	w.Header().Set(runHeader, run)
+	if r.Header.Get(runHeader) != "" && r.ProtoAtLeast(1, 1) {
+		w.WriteHeader(http.StatusProcessing)
 	}
 }

@@ -4,7 +4,9 @@ import (
 	"context"
 	"encoding/json"
 	"errors"
+	"fmt"
 	"io"
+	"net"
 	"net/http"
 	"net/http/httptest"
 	"net/url"
@@ -84,8 +86,57 @@ func TestReportIsBounded(t *testing.T) {
 	}
 	s := newReports(h)
 	s.turn <- struct{}{} // another one is in the making
-	if _, err := s.answer(ctx, Query{From: "2026-10-01"}); !errors.Is(err, context.Canceled) {
-		t.Errorf("a report that waits for its turn in vain: %v", err)
+	if w := asked(ctx, s); w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "took all the time") {
+		t.Errorf("a report that waits for its turn in vain: %d %s", w.Code, w.Body)
+	}
+	for range reportsAtATime {
+		s.queue <- struct{}{}
+	}
+	if w := asked(t.Context(), s); w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "in the making") {
+		t.Errorf("a report too many: %d %s", w.Code, w.Body)
+	}
+}
+
+func asked(ctx context.Context, s *reports) *httptest.ResponseRecorder {
+	w := httptest.NewRecorder()
+	s.ServeHTTP(w, httptest.NewRequestWithContext(ctx, http.MethodGet, reportPath+"?from=2026-10-01", nil))
+	return w
+}
+
+// Clients that ask and take nothing hold one report at a time, and that not for long.
+func TestReportsThatNobodyTakes(t *testing.T) {
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 400*1440, ramp, "ramp")
+	s := newReports(historyIn(t, db, "UTC"))
+	s.stall = 200 * time.Millisecond
+	served := make(chan struct{}, 40)
+	server := httptest.NewServer(http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		s.ServeHTTP(w, r)
+		served <- struct{}{}
+	}))
+	defer server.Close()
+	const clients = 40
+	for range clients {
+		c, err := net.Dial("tcp", server.Listener.Addr().String())
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer c.Close()
+		if err := c.(*net.TCPConn).SetReadBuffer(4096); err != nil {
+			t.Fatal(err)
+		}
+		fmt.Fprintf(c, "GET %s?from=2026-10-24&by=hour HTTP/1.1\r\nHost: x\r\n\r\n", reportPath)
+	}
+	for range clients {
+		<-served
+	}
+	resp, err := http.Get(server.URL + reportPath + "?from=2026-10-24&by=hour")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer resp.Body.Close()
+	var r Report
+	if err := json.NewDecoder(resp.Body).Decode(&r); err != nil || resp.StatusCode != http.StatusOK || len(r.Loads[0].Periods) < 9000 {
+		t.Errorf("one that takes its report: %d, %v", resp.StatusCode, err)
 	}
 }
 
