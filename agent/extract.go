@@ -46,11 +46,11 @@ func (m *meter) read(ctx context.Context, h history, s Selection) error {
 
 // ask has the agent at a export.
 func (m *meter) ask(ctx context.Context, a address, s Selection) error {
-	resp, err := a.get(ctx, exportPath, s.values())
-	if err != nil {
-		return err
-	}
-	defer resp.Body.Close()
+	return a.get(ctx, exportPath, s.values(), func(resp *http.Response) error { return m.take(a, resp) })
+}
+
+// take passes the agent's answer on.
+func (m *meter) take(a address, resp *http.Response) (err error) {
 	if resp.StatusCode != http.StatusOK {
 		body, err := io.ReadAll(io.LimitReader(resp.Body, rowsAPiece))
 		if err != nil {
@@ -76,6 +76,10 @@ func (m *meter) ask(ctx context.Context, a address, s Selection) error {
 	return nil
 }
 
+// mostLine bounds what is kept of a row; the longest that there is takes some 500 bytes. A
+// piece may end with as much of a row.
+const mostLine = rowsAPiece
+
 // meter passes an export on and sees from its lines how far it is.
 type meter struct {
 	Progress
@@ -84,7 +88,7 @@ type meter struct {
 	json  bool
 	named bool   // the line of names has passed
 	line  []byte // what has come of the line under way
-	fault error  // of w
+	fault error  // of w, or of the rows
 }
 
 func (m *meter) Write(p []byte) (n int, err error) {
@@ -95,6 +99,10 @@ func (m *meter) Write(p []byte) (n int, err error) {
 	for rest := p; ; {
 		i := bytes.IndexByte(rest, '\n')
 		if i < 0 {
+			if len(m.line)+len(rest) > mostLine {
+				m.fault = fmt.Errorf("a row of more than %d bytes after %d rows: that is no export", mostLine, m.Rows)
+				return n, m.fault
+			}
 			m.line = append(m.line, rest...)
 			break
 		}

@@ -123,6 +123,11 @@ func TestExtractOfWrongAnswers(t *testing.T) {
 			w.Header().Set(rowsTrailer, "0")
 			w.Header().Set(damageTrailer, "1 parts of the history cannot be read")
 		}, "1 parts of the history cannot be read"},
+		{"no rows at all", func(w http.ResponseWriter) {
+			for range 100 {
+				w.Write(bytes.Repeat([]byte("x"), rowsAPiece))
+			}
+		}, "a row of more than 32768 bytes"},
 		{"busy", func(w http.ResponseWriter) { http.Error(w, "another export", http.StatusServiceUnavailable) }, "another export"},
 	} {
 		server := httptest.NewServer(http.HandlerFunc(func(w http.ResponseWriter, _ *http.Request) {

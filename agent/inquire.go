@@ -29,19 +29,18 @@ func Inquire(ctx context.Context, data string, q Query) (r *Report, err error) {
 }
 
 // ask has the agent at a answer.
-func ask(ctx context.Context, a address, q Query) (*Report, error) {
+func ask(ctx context.Context, a address, q Query) (r *Report, err error) {
 	ctx, cancel := context.WithTimeout(ctx, reportTime+10*time.Second)
 	defer cancel()
-	resp, err := a.get(ctx, reportPath, q.values())
-	if err != nil {
-		return nil, err
-	}
-	defer resp.Body.Close()
-	body, err := io.ReadAll(io.LimitReader(resp.Body, answerBytes))
-	if err != nil {
-		return nil, fmt.Errorf("agent at %s: %w", a.hostPort, err)
-	}
-	return understand(a, resp.StatusCode, body)
+	err = a.get(ctx, reportPath, q.values(), func(resp *http.Response) error {
+		body, err := io.ReadAll(io.LimitReader(resp.Body, answerBytes))
+		if err != nil {
+			return fmt.Errorf("agent at %s: %w", a.hostPort, err)
+		}
+		r, err = understand(a, resp.StatusCode, body)
+		return err
+	})
+	return r, err
 }
 
 // understand reads an agent's answer.

@@ -5,6 +5,7 @@ import (
 	"encoding/gob"
 	"encoding/json"
 	"errors"
+	"net"
 	"net/http"
 	"net/http/httptest"
 	"os"
@@ -155,6 +156,8 @@ func text(t *testing.T, r *Report) string {
 
 func TestAddressOfTheAgent(t *testing.T) {
 	dir := t.TempDir()
+	path := filepath.Join(dir, addressFile)
+	keep(t, filepath.Join(dir, HistoryFile), store.Options{}, 1, ramp, "ramp")
 	if err := forgetAddress(dir); err != nil {
 		t.Error(err)
 	}
@@ -162,22 +165,91 @@ func TestAddressOfTheAgent(t *testing.T) {
 	if err := leaveAddress(dir, want); err != nil {
 		t.Fatal(err)
 	}
-	if got, ok := findAddress(dir); !ok || got != want {
-		t.Errorf("%+v, %v", got, ok)
+	if got, err := findAddress(dir); err != nil || got != want {
+		t.Errorf("%+v, %v", got, err)
+	}
+	text, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for from, to := range map[string]string{
+		"[::]:9617": "192.0.2.7:80", "::": "2001:db8::1", ":9617": "", "X\n": "\n", "device": "machine", // documentation addresses: RFC 5737, RFC 3849
+	} {
+		if err := os.WriteFile(path, bytes.Replace(text, []byte(from), []byte(to), 1), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		if a, err := findAddress(dir); err == nil {
+			t.Errorf("%q for %q: %+v", to, from, a)
+		}
+	}
+	for _, wrong := range []string{"", "localhost:80\nX\n", strings.Repeat("x\n", 1000)} {
+		if err := os.WriteFile(path, []byte(wrong), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		if a, err := findAddress(dir); err == nil {
+			t.Errorf("in %.20q: %+v", wrong, a)
+		}
 	}
 	if err := forgetAddress(dir); err != nil {
 		t.Error(err)
 	}
-	if a, ok := findAddress(dir); ok {
+	if a, err := findAddress(dir); err == nil {
 		t.Errorf("found %+v", a)
-	}
-	if err := os.WriteFile(filepath.Join(dir, addressFile), nil, 0o600); err != nil {
-		t.Fatal(err)
-	}
-	if a, ok := findAddress(dir); ok {
-		t.Errorf("in an empty file %+v", a)
 	}
 	if err := leaveAddress(filepath.Join(dir, "nowhere"), want); err == nil {
 		t.Error("an address was left nowhere")
+	}
+}
+
+// Who has a copy of a folder gets what is in the copy, and not what the agent has since.
+func TestCopyOfAFolderWithItsAddress(t *testing.T) {
+	dir, copied := t.TempDir(), filepath.Join(t.TempDir(), "copy")
+	db := keep(t, filepath.Join(dir, HistoryFile), store.Options{}, 1440, ramp, "ramp")
+	h := historyIn(t, db, "Europe/Dublin")
+	s := newReports(h)
+	server := httptest.NewServer(s)
+	defer server.Close()
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.CopyFS(copied, os.DirFS(dir)); err != nil {
+		t.Fatal(err)
+	}
+	asked := 0
+	for _, data := range []string{dir, copied} {
+		err := reach(data, func(address) error { asked++; return nil }, func(history) error { return nil })
+		if data == dir && (err != nil || asked != 1) || data == copied && asked != 1 {
+			t.Errorf("%s: asked %d times, %v", data, asked, err)
+		}
+	}
+}
+
+// What accepts and says nothing, or something else, is no agent, and the file is read soon.
+func TestSilenceAtTheAddress(t *testing.T) {
+	t.Parallel()
+	l, err := net.Listen("tcp", "127.0.0.1:0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer l.Close()
+	begun := time.Now()
+	_, err = ask(t.Context(), address{l.Addr().String(), "R"}, Query{From: "2026-10-24"})
+	if took := time.Since(begun); !errors.Is(err, errUnreachable) || took < headerTime || took > reportTime/2 {
+		t.Errorf("silence for %v: %v", took, err)
+	}
+}
+
+// An agent that is there has all the time that a report may take.
+func TestReportThatTakesLonger(t *testing.T) {
+	t.Parallel()
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 60, ramp, "ramp")
+	s := newReports(historyIn(t, db, "UTC"))
+	s.turn <- struct{}{} // another report is in the making
+	time.AfterFunc(headerTime+time.Second, func() { <-s.turn })
+	server := httptest.NewServer(s)
+	defer server.Close()
+	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run}, Query{From: "2026-10-23"})
+	if err != nil || len(r.Loads) != 1 {
+		t.Errorf("%+v, %v", r, err)
 	}
 }

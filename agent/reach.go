@@ -7,8 +7,9 @@ import (
 	"errors"
 	"fmt"
 	"io/fs"
-	"net"
 	"net/http"
+	"net/http/httptrace"
+	"net/textproto"
 	"net/url"
 	"os"
 	"path/filepath"
@@ -28,53 +29,69 @@ func reach(data string, ask func(address) error, read func(history) error) error
 	if err != nil {
 		return fmt.Errorf("history: %w", err)
 	}
-	var silence error
+	silence := errors.New("this is a file, and no data folder with its address")
 	if info.IsDir() {
 		path = filepath.Join(data, HistoryFile)
-		if a, ok := findAddress(data); ok {
-			err := ask(a)
+		a, err := findAddress(data)
+		if err == nil {
+			err = ask(a)
 			if !errors.Is(err, errUnreachable) {
 				return err
 			}
-			silence = err
 		}
+		silence = err
 	}
 	if _, err := os.Stat(path); errors.Is(err, fs.ErrNotExist) {
 		return fmt.Errorf("no history in %q: there is no file %s", data, HistoryFile)
 	}
 	err = readFile(path, read)
 	if errors.Is(err, store.ErrLocked) {
-		return fmt.Errorf("%w, and it cannot be asked: %w; run this where it runs, or on a copy of the file", err, silentFor(silence, data))
+		return fmt.Errorf("%w, and it cannot be asked: %w; run this where it runs, or on a copy of the file", err, silence)
 	}
 	return err
 }
 
-// silentFor says why no agent could be asked.
-func silentFor(silence error, data string) error {
-	if silence == nil {
-		return fmt.Errorf("no %s in %q tells where it answers", addressFile, data)
-	}
-	return silence
-}
+const (
+	// headerTime is how long an agent may take to tell that it is there.
+	headerTime  = 5 * time.Second
+	headerBytes = 64 << 10
+)
 
-// get asks the agent at a for a page. The answer is of that very run of it.
-func (a address) get(ctx context.Context, path string, v url.Values) (*http.Response, error) {
-	req, err := http.NewRequestWithContext(ctx, http.MethodGet, "http://"+a.hostPort+path+"?"+v.Encode(), nil)
+// get asks the agent at a for a page, and has take the answer, which is of that very run of
+// it. Who does not tell at once that it is that run is taken for no agent.
+func (a address) get(ctx context.Context, path string, v url.Values, take func(*http.Response) error) error {
+	ctx, cancel := context.WithCancelCause(ctx)
+	defer cancel(nil)
+	silence := fmt.Errorf("%w at %s within %v", errUnreachable, a.hostPort, headerTime)
+	timer := time.AfterFunc(headerTime, func() { cancel(silence) })
+	defer timer.Stop()
+	traced := httptrace.WithClientTrace(ctx, &httptrace.ClientTrace{Got1xxResponse: func(_ int, h textproto.MIMEHeader) error {
+		if h.Get(runHeader) == a.run {
+			timer.Stop()
+		}
+		return nil
+	}})
+	req, err := http.NewRequestWithContext(traced, http.MethodGet, "http://"+a.hostPort+path+"?"+v.Encode(), nil)
 	if err != nil {
-		return nil, fmt.Errorf("%w at %q: %w", errUnreachable, a.hostPort, err)
+		return fmt.Errorf("%w at %q: %w", errUnreachable, a.hostPort, err)
 	}
-	transport := &http.Transport{DialContext: (&net.Dialer{Timeout: 3 * time.Second}).DialContext, DisableKeepAlives: true}
+	req.Header.Set(runHeader, a.run)
+	transport := &http.Transport{DisableKeepAlives: true, DisableCompression: true, MaxResponseHeaderBytes: headerBytes}
 	resp, err := transport.RoundTrip(req)
 	switch {
+	case errors.Is(context.Cause(ctx), errUnreachable):
+		return silence
 	case err != nil && ctx.Err() != nil:
-		return nil, fmt.Errorf("agent at %s: %w", a.hostPort, err)
+		return fmt.Errorf("agent at %s: %w", a.hostPort, err)
 	case err != nil:
-		return nil, fmt.Errorf("%w at %s: %w", errUnreachable, a.hostPort, err)
-	case resp.Header.Get(runHeader) != a.run:
-		resp.Body.Close()
-		return nil, fmt.Errorf("%w at %s: something else listens there", errUnreachable, a.hostPort)
+		return fmt.Errorf("%w at %s: %w", errUnreachable, a.hostPort, err)
 	}
-	return resp, nil
+	defer resp.Body.Close()
+	timer.Stop()
+	if resp.Header.Get(runHeader) != a.run {
+		return fmt.Errorf("%w at %s: something else listens there", errUnreachable, a.hostPort)
+	}
+	return take(resp)
 }
 
 // refusal is an agent's answer that is not what was asked for.
