@@ -238,24 +238,44 @@ func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 
 // groupBefore goes back from the group of record seq until one holds nothing at
 // from or later, and returns the number of its last record, or else that of the last
-// record before the journal.
+// record before the journal. It goes back no further than to the newest block, whose
+// beats are gone: groups that could not be sealed may lie before that.
 func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 	err = s.view(func(tx *bolt.Tx) error {
+		sealed, err := s.lastSealed(tx)
+		if err != nil {
+			return err
+		}
 		c := tx.Bucket(bucketJournal).Cursor()
 		for k := seekGroup(c, seq); k != nil; k, _ = c.Prev() {
 			head, err := parseName(k)
 			if err != nil {
 				return s.damage("group", k, err)
 			}
-			if head.latest < from {
+			if head.latest < from || head.last <= sealed {
 				last = head.last
-				return nil
+				break
 			}
 			last = head.first - 1
 		}
+		last = max(last, sealed)
 		return nil
 	})
 	return last, err
+}
+
+// lastSealed returns the number of the last record of the newest block, 0 where there
+// is none.
+func (s *Store) lastSealed(tx *bolt.Tx) (uint64, error) {
+	k, _ := tx.Bucket(bucketSealed).Cursor().Last()
+	if k == nil {
+		return 0, nil
+	}
+	newest, err := parseName(k)
+	if err != nil {
+		return 0, s.damage("block", k, err)
+	}
+	return newest.last, nil
 }
 
 // Readings yields the readings of a tag with from <= At < to, in the order in
