@@ -179,9 +179,22 @@ func (l *loadAccount) note(source *records, faults []error) {
 	if len(faults) > 0 {
 		l.notes = append(l.notes, fmt.Sprintf("%s: %d records cannot be used and are missing; the first: %v", l.Load, len(faults), faults[0]))
 	}
+	if source.cut > 0 {
+		l.notes = append(l.notes, l.cutNote(source))
+	}
 	if source.whole > 0 && source.plan.Demand != 0 {
 		l.notes = append(l.notes, fmt.Sprintf("%s: of %d hours not all minutes are left; their heat counts, their demand is not known", l.Load, source.whole))
 	}
+}
+
+// cutNote tells what hours were divided.
+func (l *loadAccount) cutNote(source *records) string {
+	by, zone := source.plan.By, source.plan.Zone
+	text := fmt.Sprintf("%s: of %d hours by UTC that reach over the end of a local %s, or of the report, not all minutes are left; their heat is divided by time, which is an estimate", l.Load, source.cut, by)
+	if by == account.Hour {
+		text += fmt.Sprintf(": hours by the clock of %s are known only as long as there are minutes", zone)
+	}
+	return text
 }
 
 // addRegisters puts the registers beside the sums where the report goes as far as the

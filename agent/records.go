@@ -26,6 +26,7 @@ type records struct {
 	plan  account.Plan
 	first int64 // start of the first record yielded; 0 before
 	whole int   // hours yielded where minutes were asked for
+	cut   int   // of those, hours that were cut by the ends of periods or of the plan
 	err   error // why all ended before its time
 }
 
@@ -67,8 +68,8 @@ func (r *records) coarse(h store.Hour) bool {
 }
 
 // minutes yields those of the hour that the plan asks for. Where not all of them are there
-// any more, or can be read, the hour must do: it cannot be told apart, but its heat is
-// not to be lost.
+// any more, or can be read, the hour must do, cut by length at the ends of periods: its heat
+// is not to be lost.
 func (r *records) minutes(h store.Hour, yield func(account.Record, error) bool) bool {
 	found := make([]store.Minute, 0, 60)
 	for m, err := range r.db.Minutes(r.load, h.Start, h.Start+hour) {
@@ -80,13 +81,31 @@ func (r *records) minutes(h store.Hour, yield func(account.Record, error) bool) 
 		}
 	}
 	if len(found) < int(h.Minutes) {
-		r.whole++
-		return r.tell(hourRecord(h), yield)
+		return r.pieces(hourRecord(h), yield)
 	}
 	for _, m := range found {
 		if m.Start >= r.plan.From && m.Start < r.plan.Until() && !r.tell(minuteRecord(m), yield) {
 			return false
 		}
+	}
+	return true
+}
+
+// pieces yields what of an hour lies in the plan, a record a period.
+func (r *records) pieces(x account.Record, yield func(account.Record, error) bool) bool {
+	r.whole++
+	x.End = min(x.End, r.plan.Accounted()) // what has not come yet is not in it
+	from, until := max(x.Start, r.plan.From), min(x.End, r.plan.Until())
+	if _, end := r.plan.By.Bounds(from, r.plan.Zone); from > x.Start || until < x.End || end < until {
+		r.cut++
+	}
+	for from < until {
+		_, end := r.plan.By.Bounds(from, r.plan.Zone)
+		end = min(end, until)
+		if !r.tell(x.Cut(from, end), yield) {
+			return false
+		}
+		from = end
 	}
 	return true
 }

@@ -149,12 +149,54 @@ func TestReportOfHoursWithoutMinutes(t *testing.T) {
 		len(r.Notes) != 1 || !strings.Contains(r.Notes[0], "ramp: of 24 hours not all minutes are left") {
 		t.Errorf("total %+v, notes %q", l.Total, r.Notes)
 	}
-	h = historyIn(t, db, "Asia/Kolkata") // midnight is in the middle of such an hour
-	if r, err = h.report(t.Context(), Query{From: "2026-10-24T06:00", To: "2026-10-26"}); err != nil {
+}
+
+// By a clock that is off UTC by half an hour, or from the middle of an hour, hours without
+// minutes are divided: no heat is lost, the time adds up, and it is said.
+func TestReportOfHoursThatAreCut(t *testing.T) {
+	const n = 3 * 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{MaxAge: 24 * time.Hour}, n, ramp, "ramp")
+	if _, err := db.Trim(week.Add(n * time.Minute).UnixNano()); err != nil {
 		t.Fatal(err)
 	}
-	if len(r.Notes) != 1 || !strings.Contains(r.Notes[0], "ramp: 3 records cannot be used and are missing") {
-		t.Errorf("notes %q; want the hours that lie in two days, or are cut by the ends of the report", r.Notes)
+	h := historyIn(t, db, "Asia/Kolkata")
+	for _, tt := range []struct {
+		by       string
+		from, to int // minutes of the ramp
+		cut      string
+	}{
+		{"day", 0, n, "ramp: of 2 hours by UTC that reach over the end of a local day"},
+		{"hour", 0, n, "ramp: of 48 hours by UTC that reach over the end of a local hour"},
+		{"month", 0, n, ""},
+		{"month", 90, 1530, "ramp: of 2 hours by UTC"}, // from the middle of an hour to that of one
+	} {
+		q := Query{By: tt.by, From: week.Add(time.Duration(tt.from) * time.Minute).Format(time.RFC3339), To: week.Add(time.Duration(tt.to) * time.Minute).Format(time.RFC3339)}
+		r, err := h.report(t.Context(), q)
+		if err != nil {
+			t.Fatal(err)
+		}
+		l := r.Loads[0]
+		want := rampHeat(tt.from, tt.to)
+		if tt.from > 0 { // half of each hour that is cut
+			want = rampHeat(120, 1500) + rampHeat(60, 120)/2 + rampHeat(1500, 1560)/2
+		}
+		if !near12(l.Total.Given, want) || !near12(l.Total.Measured, 58*float64(tt.to-tt.from)) || !near12(l.Total.Missing, 2*float64(tt.to-tt.from)) {
+			t.Errorf("%+v: total %+v, want %g J", q, l.Total, want)
+		}
+		for _, p := range l.Periods {
+			a, b := int(p.AccountedFrom.Sub(week)/time.Minute), int(p.AccountedTo.Sub(week)/time.Minute)
+			// An hour of the ramp divided evenly moves at most 30 min · 30 · 100 W over each end.
+			if d := math.Abs(p.Given - rampHeat(a, b)); d > 2*30*58*3000 || p.Missing < 0 || math.Abs(p.Measured+p.Missing-float64(60*(b-a))) > 1e-6 {
+				t.Errorf("%+v: %+v, want %g J", q, p, rampHeat(a, b))
+			}
+		}
+		if notes := strings.Join(r.Notes, "\n"); (notes != "") != (tt.cut != "") || !strings.HasPrefix(notes, tt.cut) || strings.Contains(notes, "by the clock of Asia/Kolkata") != (tt.by == "hour") {
+			t.Errorf("%+v: notes %q", q, r.Notes)
+		}
+	}
+	r, err := h.report(t.Context(), Query{From: "2026-10-24T04:30", To: "2026-10-25T00:30", Demand: 30 * time.Minute})
+	if err != nil || r.Loads[0].Total.Demand.Peak != nil {
+		t.Errorf("demand of hours that are cut: %+v, %v", r.Loads[0].Total.Demand, err)
 	}
 }
 

@@ -22,6 +22,8 @@ type Record struct {
 	Duty              float64 // mean over that time, W, positive in the load's service
 	Lowest, Highest   float64 // least and greatest figure of the duty in it, W
 	Uncertainty       float64 // mean standard uncertainty of the duty over that time, W
+
+	seen span
 }
 
 // covered is the time that the heat stands for, in s.

@@ -14,14 +14,14 @@ type demandWindow struct {
 }
 
 // demand adds r to its window, and settles the one before. A record that goes on after
-// the window does not tell what of it was in there.
+// the window, or is cut, does not tell what of it was in there.
 func (f *fold) demand(r *Record) {
 	w := &f.window
 	if r.Start >= w.end {
 		f.settle()
 		w.start, w.end = window(r.Start, int64(f.plan.Demand), f.plan.Zone)
 	}
-	if r.End <= w.end {
+	if r.End <= w.end && r.seen == (span{}) {
 		w.covered += r.Measured + r.Bridged
 		w.served.Add(r.Duty * r.covered())
 	}

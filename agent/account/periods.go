@@ -56,7 +56,7 @@ func (p *Plan) stamp(t int64) string {
 // Records must come in the order of time and each lie whole in one period. What does
 // not is yielded as an error and not counted, and so is an error of records itself; the
 // account goes on unless the caller stops. A record that does not lie whole in one
-// demand window covers none.
+// demand window covers none, and neither does one that is cut.
 func Periods(p Plan, records iter.Seq2[Record, error]) iter.Seq2[Period, error] {
 	return func(yield func(Period, error) bool) {
 		f := fold{plan: p, last: p.From}
@@ -129,11 +129,12 @@ func (f *fold) add(r *Record) error {
 	if s == 0 {
 		return nil
 	}
+	start, end := r.holder()
 	if !p.Covered() || r.Lowest < p.Lowest.Duty {
-		p.Lowest = Extreme{r.Lowest, r.Start, r.End}
+		p.Lowest = Extreme{r.Lowest, start, end}
 	}
 	if !p.Covered() || r.Highest > p.Highest.Duty {
-		p.Highest = Extreme{r.Highest, r.Start, r.End}
+		p.Highest = Extreme{r.Highest, start, end}
 	}
 	p.Measured += r.Measured
 	p.Bridged += r.Bridged
