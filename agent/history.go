@@ -67,6 +67,7 @@ func (h *history) fill(ctx context.Context, r *Report, plan account.Plan, ids ma
 			return err
 		}
 		r.Notes = append(r.Notes, l.notes...)
+		r.Unused += l.unused
 		if l.worthTelling(byName || slices.Contains(h.current, name)) {
 			r.Loads = append(r.Loads, l.LoadReport)
 			periods += len(l.Periods)
@@ -128,8 +129,9 @@ func unknown(kind, name string, known []string) error {
 // loadAccount is a [LoadReport] in the making.
 type loadAccount struct {
 	LoadReport
-	begun bool // the load has a record from before the end of the report
-	notes []string
+	begun  bool // the load has a record from before the end of the report
+	notes  []string
+	unused int // records that cannot be used
 }
 
 // worthTelling tells whether the load belongs in the report: one that has begun, and has
@@ -176,7 +178,7 @@ func (h *history) load(ctx context.Context, plan account.Plan, name string, id u
 
 // note adds what is remarkable about the records.
 func (l *loadAccount) note(source *records, faults []error) {
-	if len(faults) > 0 {
+	if l.unused = len(faults); l.unused > 0 {
 		l.notes = append(l.notes, fmt.Sprintf("%s: %d records cannot be used and are missing; the first: %v", l.Load, len(faults), faults[0]))
 	}
 	if source.cut > 0 {

@@ -20,6 +20,8 @@ type Report struct {
 	Accounted time.Time    `json:"accounted_to"`
 	Loads     []LoadReport `json:"loads"`
 	Notes     []string     `json:"notes,omitempty"`
+	// Unused is how many records cannot be used, and are missing.
+	Unused int `json:"records_not_used,omitempty"`
 }
 
 // LoadReport is one load of a [Report].

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"errors"
+	"fmt"
 	"io"
 
 	"heatreeve/agent"
@@ -18,7 +19,10 @@ report any more; without it, the report goes as far as the history.
 Uncertainties are those of given less taken, as if the duty's were the same
 throughout: nothing of it averages out, within a period or between them. Table
 and csv show them twice the standard one; json is SI, and the standard one.
-Missing time has no heat in it. csv has no line of totals.
+Missing time has no heat in it. csv has no line of totals, and its notes go to
+stderr. A load whose name a spreadsheet would take for a formula (= + - @ first) has
+an apostrophe before it in csv. A report that had to leave out damaged records ends
+with status 1.
 `
 
 var formats = map[string]func(io.Writer, *agent.Report) error{
@@ -66,5 +70,22 @@ func runReport(ctx context.Context, c *call) error {
 	case err != nil:
 		return err
 	}
-	return write(c.stdout, r)
+	if err := write(c.stdout, r); err != nil {
+		return err
+	}
+	return tellReport(c.stderr, r, *format)
+}
+
+// tellReport puts on w what of the report its form has no room for. The error says that it is
+// not whole.
+func tellReport(w io.Writer, r *agent.Report, format string) error {
+	if format == "csv" {
+		for _, note := range r.Notes {
+			fmt.Fprintln(w, "note:", note)
+		}
+	}
+	if r.Unused > 0 {
+		return fmt.Errorf("%d records of the history cannot be used, and are missing in the report; see its notes", r.Unused)
+	}
+	return nil
 }

@@ -9,6 +9,7 @@ import (
 	"strconv"
 	"strings"
 	"testing"
+	"time"
 	"unicode/utf8"
 
 	"heatreeve/agent"
@@ -110,6 +111,65 @@ func TestReportCSVAgainstJSON(t *testing.T) {
 	}
 }
 
+// What a report has to note goes to stderr where its form has no room for it, and one that
+// leaves out records ends with status 1.
+func TestReportTellsItsNotes(t *testing.T) {
+	data := keep(t)
+	db, err := store.Open(filepath.Join(data, agent.HistoryFile), store.Options{MaxAge: 24 * time.Hour})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	end := keptFrom.Add(keptMinutes * time.Minute)
+	if _, err := db.Trim(end.UnixNano()); err != nil {
+		t.Fatal(err)
+	}
+	tell := func(wantStatus int, want string) {
+		t.Helper()
+		if err := db.Close(); err != nil {
+			t.Fatal(err)
+		}
+		args := []string{"--data", data, "--from", "2026-10-24", "--zone", "Asia/Kolkata", "--load", "hot-water", "--format"}
+		for _, format := range []string{"csv", "table", "json"} {
+			status, out, errs := report(t, append(args, format)...)
+			place := out
+			if format == "csv" {
+				place = errs
+			}
+			if status != wantStatus || !strings.Contains(strings.Join(strings.Fields(place), " "), want) || (errs != "") != (format == "csv" || wantStatus != exitGood) || strings.Count(out, "\n") < 4 {
+				t.Errorf("%s: status %d, %q, %s", format, status, errs, out)
+			}
+		}
+	}
+	tell(exitGood, "hot-water: of 2 hours by UTC that reach over the end of a local day")
+	if db, err = store.Open(filepath.Join(data, agent.HistoryFile), store.Options{}); err != nil {
+		t.Fatal(err)
+	}
+	ids, err := db.Names("load")
+	if err != nil {
+		t.Fatal(err)
+	}
+	wrong := store.Minute{Load: ids["hot-water"], Start: end.Add(-time.Minute).UnixNano(), Measured: 60, Given: -1e12}
+	if err := db.Commit(store.Batch{Minutes: []store.Minute{wrong}}); err != nil {
+		t.Fatal(err)
+	}
+	tell(exitFailed, "hot-water: 1 records cannot be used and are missing")
+}
+
+// A name that begins like a formula has an apostrophe before it in csv.
+func TestReportCSVHasNoFormulas(t *testing.T) {
+	for name, want := range map[string]string{"hot-water": "hot-water", "=1+1": "'=1+1", "+a": "'+a", "-a": "'-a", "@a": "'@a", "\ta": "'\ta", "＝a": "'＝a", "a=1,b": "a=1,b"} {
+		var b strings.Builder
+		if err := reportCSV(&b, &agent.Report{Loads: []agent.LoadReport{{Load: name, Periods: make([]agent.PeriodReport, 1)}}}); err != nil {
+			t.Fatal(err)
+		}
+		records, err := csv.NewReader(strings.NewReader(b.String())).ReadAll()
+		if err != nil || records[1][0] != want {
+			t.Errorf("%q: %q, %v", name, records[1][0], err)
+		}
+	}
+}
+
 func TestReportRefusals(t *testing.T) {
 	data, dir := keep(t), t.TempDir()
 	example := "../../../configs/brackwater-creamery.yaml"
@@ -168,7 +228,7 @@ func TestReadmeNamesTheReportKeys(t *testing.T) {
 	if err := json.Unmarshal([]byte(text), &any); err != nil {
 		t.Fatal(err)
 	}
-	have := map[string]bool{"notes": true} // of a damaged history
+	have := map[string]bool{"notes": true, "records_not_used": true} // of a damaged history
 	gather(have, any)
 	for key := range have {
 		if !strings.Contains(list, "`"+key+"`") {

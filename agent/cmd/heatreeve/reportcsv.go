@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"strconv"
+	"strings"
 	"time"
 
 	"heatreeve/agent"
@@ -44,7 +45,7 @@ func reportCSV(w io.Writer, r *agent.Report) error {
 
 func reportRecord(load string, p *agent.PeriodReport) []string {
 	fields := []string{
-		load, instantField(p.Start), instantField(p.End), instantField(p.AccountedFrom), instantField(p.AccountedTo),
+		textField(load), instantField(p.Start), instantField(p.End), instantField(p.AccountedFrom), instantField(p.AccountedTo),
 		field(p.Given / 3.6e6), field(p.Taken / 3.6e6), field(2 * p.Uncertainty / 3.6e6),
 		field(p.Measured), field(p.Bridged), field(p.Missing), field(p.Coverage),
 	}
@@ -73,5 +74,14 @@ func demandFields(d *agent.Demand) []string {
 
 // field shows a number with all its digits, and never with an exponent.
 func field(x float64) string { return strconv.FormatFloat(x, 'f', -1, 64) }
+
+// textField shows a name so that no spreadsheet works it as a formula: quotes do not keep
+// one from that, an apostrophe in front does (common practice, no source).
+func textField(name string) string {
+	if name != "" && strings.ContainsRune("=+-@\t\r\n＝＋－＠", []rune(name)[0]) {
+		return "'" + name
+	}
+	return name
+}
 
 func instantField(t time.Time) string { return t.Format("2006-01-02T15:04:05-07:00") }
