@@ -24,7 +24,7 @@ type accounts struct {
 	closed []loads.Minute
 
 	site, zone string            // name of the plant, and time zone of its reports
-	units      map[string]string // SI unit of the readings of each tag
+	units      map[string]string // SI unit of the readings of each tag, or changedUnit
 }
 
 // newAccounts returns empty accounts of the plant that the site file with the digest
@@ -101,10 +101,24 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 			j.Restore(was.Last, was.Minutes)
 		}
 	}
-	for tag, u := range s.Units {
-		if _, ok := a.units[tag]; !ok && a.units != nil {
-			a.units[tag] = u
+	a.keepUnits(s.Units)
+	return s.Rules == a.rules, a.engine.Restore(s.Engine)
+}
+
+// changedUnit stands for the unit of a tag whose readings were not always of one.
+const changedUnit = "changed"
+
+// keepUnits adds the units that the history had before: of tags that have left, and of those
+// that measure something else now.
+func (a *accounts) keepUnits(before map[string]string) {
+	if a.units == nil {
+		return
+	}
+	for tag, was := range before {
+		if is, ok := a.units[tag]; !ok {
+			a.units[tag] = was
+		} else if is != was {
+			a.units[tag] = changedUnit
 		}
 	}
-	return s.Rules == a.rules, a.engine.Restore(s.Engine)
 }

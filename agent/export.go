@@ -24,6 +24,7 @@ type export struct {
 	from, to int64
 	through  int64 // how far the history goes
 	zone     *time.Location
+	note     string // what is to know about all of it; may be empty
 
 	rows    int64
 	damaged int   // parts that cannot be read
@@ -45,8 +46,8 @@ const (
 // valueColumn names the values of a tag by their SI unit.
 func valueColumn(unit string) string {
 	switch unit {
-	case "":
-		return "value_SI" // the history does not say
+	case "", changedUnit:
+		return "value_SI" // the history does not say, or it is not always the same
 	case "1":
 		return "value_ratio"
 	}
@@ -65,6 +66,9 @@ func (h *history) export(s Selection) (*export, error) {
 	kind, name, of := "tag", s.Tag, "reading"
 	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), "stamped"}; x.minutes {
 		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns
+	}
+	if !x.minutes && h.units[s.Tag] == changedUnit {
+		x.note = fmt.Sprintf("tag %q has not always measured the same: the unit of its values changed with the site file", s.Tag)
 	}
 	x.what = fmt.Sprintf("%s of %s %q", of, kind, name)
 	ids, err := h.db.Names(kind)

@@ -186,7 +186,7 @@ func TestRowNumbers(t *testing.T) {
 }
 
 func TestValueColumn(t *testing.T) {
-	for unit, want := range map[string]string{"K": "value_K", "Pa": "value_Pa", "kg/s": "value_kg_per_s", "m3/s": "value_m3_per_s", "mol/s": "value_mol_per_s", "1": "value_ratio", "": "value_SI"} {
+	for unit, want := range map[string]string{"K": "value_K", "Pa": "value_Pa", "kg/s": "value_kg_per_s", "m3/s": "value_m3_per_s", "mol/s": "value_mol_per_s", "1": "value_ratio", "": "value_SI", changedUnit: "value_SI"} {
 		if got := valueColumn(unit); got != want {
 			t.Errorf("%q: %q, want %q", unit, got, want)
 		}
@@ -309,5 +309,46 @@ func TestUnitsOutliveTheirTags(t *testing.T) {
 	h, err := historyOf(db)
 	if err != nil || h.units["TT-gone"] != "K" || len(h.units) != len(parsed(t, benchSite).Tags)+1 {
 		t.Errorf("the file knows %v, %v", h.units, err)
+	}
+}
+
+// Readings from before a tag measured something else are not told in its new unit, by the
+// file as by the agent, and nor are they after it has gone back.
+func TestUnitThatHasChanged(t *testing.T) {
+	dir := t.TempDir()
+	path := filepath.Join(dir, HistoryFile)
+	volume := strings.Replace(strings.Replace(benchSite, "outlet: TO,", "outlet: TO, meter_at: inlet,", 1), "unit: kg/s,", "unit: m3/h,", 1)
+	extract := func(tag string) (string, string) {
+		t.Helper()
+		var b bytes.Buffer
+		var last Progress
+		if err := Extract(t.Context(), dir, Selection{Tag: tag}, &b, func(p Progress) { last = p }); err != nil {
+			t.Fatal(err)
+		}
+		columns, _, _ := strings.Cut(b.String(), "\r\n")
+		return columns, last.Note
+	}
+	for i, text := range []string{benchSite, volume, benchSite} {
+		l, shut := open(t, parsed(t, text), path, store.Options{})
+		feed(l, int64(i)*100, int64(i+1)*100)
+		if err := l.commit(clock, true); err != nil {
+			t.Fatal(err)
+		}
+		s := newExports(newReports(history{db: l.store, zone: time.UTC, through: l.through.Load, units: l.accounts.units}))
+		server := httptest.NewServer(s)
+		if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+			t.Fatal(err)
+		}
+		asked, askedNote := extract("FT")
+		server.Close()
+		shut()
+		read, readNote := extract("FT")
+		want := map[bool]string{true: "time,value_kg_per_s,stamped", false: "time,value_SI,stamped"}[i == 0]
+		if asked != want || read != want || (readNote != "") != (i > 0) || askedNote != readNote {
+			t.Errorf("site %d: the agent says %s %q, the file %s %q; want %s", i, asked, askedNote, read, readNote, want)
+		}
+		if steady, note := extract("TI"); steady != "time,value_K,stamped" || note != "" {
+			t.Errorf("another tag: %s %q", steady, note)
+		}
 	}
 }

@@ -13,6 +13,8 @@ const (
 	exportPath = "/export"
 	// untilHeader tells to where an export can go.
 	untilHeader = "Heatreeve-Until"
+	// noteHeader tells what is to know about all of an export, if anything.
+	noteHeader = "Heatreeve-Note"
 	// rowsTrailer follows an export that has come to its end, and tells its rows;
 	// damageTrailer what of the history could not be read.
 	rowsTrailer   = "Heatreeve-Rows"
@@ -66,6 +68,9 @@ func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
 	}
 	w.Header().Set("Content-Type", kind)
 	w.Header().Set(untilHeader, x.until().Format(time.RFC3339Nano))
+	if x.note != "" {
+		w.Header().Set(noteHeader, x.note)
+	}
 	w.Header().Set("Trailer", rowsTrailer+", "+damageTrailer)
 	err := x.write(ctx, body)
 	switch {
@@ -73,6 +78,7 @@ func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
 		panic(http.ErrAbortHandler)
 	case err != nil:
 		w.Header().Del("Trailer")
+		w.Header().Del(noteHeader)
 		refuse(w, err)
 		return
 	}

@@ -16,6 +16,7 @@ type Progress struct {
 	Rows      int64
 	First, At time.Time // of the first row, and of the last
 	Until     time.Time // to where it can go
+	Note      string    // what is to know about all of it; may be empty
 }
 
 // Extract writes what s selects of a history to w: of a data folder, or of a copy of its
@@ -40,7 +41,7 @@ func (m *meter) read(ctx context.Context, h history, s Selection) error {
 	if err != nil {
 		return err
 	}
-	m.Until = x.until()
+	m.Until, m.Note = x.until(), x.note
 	return errors.Join(x.write(ctx, m), x.whole())
 }
 
@@ -61,6 +62,7 @@ func (m *meter) take(a address, resp *http.Response) (err error) {
 	if m.Until, err = time.Parse(time.RFC3339, resp.Header.Get(untilHeader)); err != nil {
 		return fmt.Errorf("agent at %s: its export tells no end: %w", a.hostPort, err)
 	}
+	m.Note = resp.Header.Get(noteHeader)
 	if _, err := io.CopyBuffer(m, resp.Body, make([]byte, rowsAPiece)); err != nil {
 		if m.fault != nil {
 			return m.fault

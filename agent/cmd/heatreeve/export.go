@@ -14,7 +14,7 @@ import (
 const exportHelp = `Readings come as they were committed: in the order of time but for late ones. time
 is their event time, stamped tells whether it came with the value rather than from
 the clock at arrival, and the value is in SI: K, Pa absolute, kg/s, m3/s, mol/s or a
-ratio. Minutes of a load come in the order of time; means are empty where nothing
+ratio; value_SI and a note on stderr where a tag has not always had the same. Minutes of a load come in the order of time; means are empty where nothing
 was measured. All times are UTC. csv (RFC 4180) has its units in the header; json is
 an object a line.
 
@@ -41,8 +41,15 @@ func runExport(ctx context.Context, c *call) error {
 		return wrongf("heatreeve export: --data and --tag or --load must be given; see heatreeve export --help")
 	}
 	line := newProgressLine(c, *progress)
-	err := agent.Extract(ctx, *data, s, c.stdout, line.tell)
+	note := ""
+	err := agent.Extract(ctx, *data, s, c.stdout, func(p agent.Progress) {
+		note = p.Note
+		line.tell(p)
+	})
 	line.end(err)
+	if note != "" {
+		fmt.Fprintln(c.stderr, "note:", note)
+	}
 	var wrong *agent.QueryError
 	if errors.As(err, &wrong) {
 		return wrongf("heatreeve export: --%w", err)
