@@ -40,7 +40,7 @@ func readHourMark(tx *bolt.Tx) (hourMark, error) {
 // putHours keeps the hours up to date with their minutes, of which changed have just
 // been written: an hour that is over is built, one that was built before is
 // built anew.
-func putHours(tx *bolt.Tx, changed []Minute) error {
+func (s *Store) putHours(tx *bolt.Tx, changed []Minute) error {
 	mark, err := readHourMark(tx)
 	if err != nil {
 		return err
@@ -55,16 +55,16 @@ func putHours(tx *bolt.Tx, changed []Minute) error {
 		}
 	}
 	for _, start := range slices.Sorted(maps.Keys(late)) {
-		w := newHourWalk(tx, start)
-		if err := mark.put(tx, w.hour(func(load uint32) bool { return late[start][load] })); err != nil {
+		w := s.newHourWalk(tx, start)
+		if err := mark.put(tx, w.hour(func(load uint32) bool { return late[start][load] }), w.torn); err != nil {
 			return err
 		}
 	}
-	return advanceHours(tx, mark, keysAStep)
+	return s.advanceHours(tx, mark, keysAStep)
 }
 
 // advanceHours builds hours that are over, from some keys or a few more.
-func advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
+func (s *Store) advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
 	last, _ := tx.Bucket(bucketMinutes).Cursor().Last()
 	if len(last) != 12 {
 		return nil
@@ -73,9 +73,9 @@ func advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
 	if end <= mark.built {
 		return nil
 	}
-	w := newHourWalk(tx, mark.built)
+	w := s.newHourWalk(tx, mark.built)
 	for w.keys < keys && w.key != nil && w.start() < end {
-		if err := mark.put(tx, w.hour(anyLoad)); err != nil {
+		if err := mark.put(tx, w.hour(anyLoad), w.torn); err != nil {
 			return err
 		}
 	}
@@ -88,14 +88,16 @@ func advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
 
 // hourWalk goes through minutes an hour at a time.
 type hourWalk struct {
+	store      *Store // hears of what cannot be read
 	cursor     *bolt.Cursor
 	key, value []byte // the first of the hour that comes; nil at the end
 	keys       int    // that have been passed
 	minutes    []Minute
+	torn       map[uint32]bool // blocks of loads of which some in the last hour cannot be read
 }
 
-func newHourWalk(tx *bolt.Tx, from int64) *hourWalk {
-	w := &hourWalk{cursor: tx.Bucket(bucketMinutes).Cursor()}
+func (s *Store) newHourWalk(tx *bolt.Tx, from int64) *hourWalk {
+	w := &hourWalk{store: s, cursor: tx.Bucket(bucketMinutes).Cursor()}
 	w.key, w.value = w.cursor.Seek(minuteKey(from, 0))
 	return w
 }
@@ -103,17 +105,17 @@ func newHourWalk(tx *bolt.Tx, from int64) *hourWalk {
 func (w *hourWalk) start() int64 { return hourOf(keyTime(w.key)) }
 
 // hour adds up the next hour that has minutes, of the loads that are wanted, and
-// returns them by load. Minutes that cannot be read are not in it: they are told
-// by whoever reads them.
+// returns them by load. Minutes that cannot be read are not in it: the store tells of
+// them once the hour is written.
 func (w *hourWalk) hour(want func(load uint32) bool) []Hour {
 	if w.key == nil {
 		return nil
 	}
 	start := w.start()
 	sums := map[uint32]*hourSum{}
+	w.torn = map[uint32]bool{}
 	for w.key != nil && w.start() == start {
-		w.minutes, _ = parseMinutes(w.minutes[:0], w.key, w.value, want)
-		for i := range w.minutes {
+		for i := range w.read(want) {
 			m := &w.minutes[i]
 			if sums[m.Load] == nil {
 				sums[m.Load] = &hourSum{}
@@ -130,14 +132,44 @@ func (w *hourWalk) hour(want func(load uint32) bool) []Hour {
 	return hours
 }
 
+// read parses the minutes of the key that w is at, where any of their loads is wanted.
+func (w *hourWalk) read(want func(load uint32) bool) []Minute {
+	w.minutes = w.minutes[:0]
+	if !wantsAny(w.key, want) {
+		return nil
+	}
+	var err error
+	if w.minutes, err = parseMinutes(w.minutes, w.key, w.value, want); err != nil {
+		if len(w.key) == 12 {
+			w.torn[binary.BigEndian.Uint32(w.key[8:])] = true
+		}
+		w.store.torn = append(w.store.torn, w.store.damage("minutes", w.key, err))
+	}
+	return w.minutes
+}
+
+// wantsAny tells whether any load is wanted that the key of minutes may hold.
+func wantsAny(key []byte, want func(load uint32) bool) bool {
+	if len(key) != 12 {
+		return true
+	}
+	first := binary.BigEndian.Uint32(key[8:]) * loadsAKey
+	for load := first; load-first < loadsAKey; load++ {
+		if want(load) {
+			return true
+		}
+	}
+	return false
+}
+
 // put writes hours that have one start, sorted by load.
-func (mark hourMark) put(tx *bolt.Tx, hours []Hour) error {
+func (mark hourMark) put(tx *bolt.Tx, hours []Hour, torn map[uint32]bool) error {
 	bucket := tx.Bucket(bucketHours)
 	bucket.FillPercent = appendFill
 	for len(hours) > 0 {
 		key := minuteKey(hours[0].Start, hours[0].Load)
 		n := sort.Search(len(hours), func(i int) bool { return hours[i].Load/loadsAKey > hours[0].Load/loadsAKey })
-		all, err := mark.merge(bucket.Get(key), key, hours[:n])
+		all, err := mark.merge(bucket.Get(key), key, hours[:n], torn[hours[0].Load/loadsAKey])
 		if err != nil {
 			return err
 		}
@@ -150,8 +182,8 @@ func (mark hourMark) put(tx *bolt.Tx, hours []Hour) error {
 }
 
 // merge puts fresh hours among those that old holds. One that was built when more of
-// its minutes were there stays.
-func (mark hourMark) merge(old, key []byte, fresh []Hour) (all []Hour, err error) {
+// its minutes were there, or could be read, stays.
+func (mark hourMark) merge(old, key []byte, fresh []Hour, torn bool) (all []Hour, err error) {
 	if old != nil {
 		if all, err = parseHours(nil, key, old, anyLoad); err != nil {
 			return nil, fmt.Errorf("%w: hour with key % x: %w", ErrDamaged, key, err)
@@ -162,7 +194,7 @@ func (mark hourMark) merge(old, key []byte, fresh []Hour) (all []Hour, err error
 		switch {
 		case i == len(all) || all[i].Load != h.Load:
 			all = slices.Insert(all, i, h)
-		case h.Start >= mark.trimmed || h.Minutes > all[i].Minutes:
+		case h.Start >= mark.trimmed && !torn || h.Minutes > all[i].Minutes:
 			all[i] = h
 		}
 	}
@@ -173,7 +205,8 @@ func (mark hourMark) merge(old, key []byte, fresh []Hour) (all []Hour, err error
 // that are not over yet, and those of a file of an older layout that are not
 // built yet, are added up from the minutes there are. The store may be written to
 // meanwhile. Damaged hours are told as an error and passed over unless the caller
-// stops.
+// stops, and so are damaged minutes of those that are added up, which [Store.Torn] counts
+// once their hour is over.
 func (s *Store) Hours(load uint32, from, to int64) iter.Seq2[Hour, error] {
 	return func(yield func(Hour, error) bool) {
 		if hourOf(from) != from {
@@ -208,7 +241,7 @@ func (s *Store) hoursFrom(found []Hour, from, to int64, load uint32) (all []Hour
 		case from < mark.built:
 			all, faults, next = s.builtFrom(tx, all, from, min(to, mark.built), load)
 		default:
-			all, next = unbuiltFrom(tx, all, from, to, load)
+			all, faults, next = s.unbuiltFrom(tx, all, from, to, load)
 		}
 		return nil
 	})
@@ -239,17 +272,20 @@ func (s *Store) builtFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) 
 }
 
 // unbuiltFrom adds up the next hour from its minutes.
-func unbuiltFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, next int64) {
+func (s *Store) unbuiltFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, faults []error, next int64) {
 	c := loadCursor{tx.Bucket(bucketMinutes).Cursor(), load / loadsAKey}
 	k, v := c.seek(from)
 	if k == nil || hourOf(keyTime(k)) >= to {
-		return all, to
+		return all, nil, to
 	}
 	start := hourOf(keyTime(k))
 	var sum hourSum
 	var minutes []Minute
 	for k != nil && hourOf(keyTime(k)) == start {
-		minutes, _ = parseMinutes(minutes[:0], k, v, func(l uint32) bool { return l == load })
+		var err error
+		if minutes, err = parseMinutes(minutes[:0], k, v, func(l uint32) bool { return l == load }); err != nil {
+			faults = append(faults, s.damage("minutes", k, err))
+		}
 		for i := range minutes {
 			sum.add(&minutes[i])
 		}
@@ -258,7 +294,7 @@ func unbuiltFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour
 	if sum.Minutes > 0 {
 		all = append(all, sum.hour())
 	}
-	return all, hourAfter(start)
+	return all, faults, hourAfter(start)
 }
 
 // keyTime is the instant in a key of minutes or hours.

@@ -64,8 +64,8 @@ type Options struct {
 	// Commit fails, and IsFull tells so. 0 stands for MaxBytes and an eighth and
 	// 16 MiB more, and on a 32-bit machine for no more than 400 MB.
 	MaxFile int64
-	// Log hears of a compaction or a new layout at Open, and of readings that cannot
-	// be sealed; nil is silence.
+	// Log hears of a compaction or a new layout at Open, of readings that cannot be
+	// sealed, and of minutes that cannot be read for their hour; nil is silence.
 	Log *slog.Logger
 }
 
@@ -82,13 +82,15 @@ type Store struct {
 	piece      int // bytes that one tail bucket may hold
 	groupBytes int // size at which a group is closed
 
-	used atomic.Int64 // bytes of the pages in use
+	used      atomic.Int64 // bytes of the pages in use
+	tornCount atomic.Int64
 
 	mu      sync.Mutex // held while writing; guards what follows
 	open    *openGroup // nil: to be read from the file before the next record
 	newest  int64      // Through of the last beat
 	sealing sealer
-	full    bool // the last commit found no room
+	torn    []error // minutes that the transaction at hand builds hours without
+	full    bool    // the last commit found no room
 	closed  bool
 }
 
@@ -133,7 +135,7 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 			return fmt.Errorf("minutes: %w", err)
 		}
 	}
-	if err := putHours(tx, b.Minutes); err != nil {
+	if err := s.putHours(tx, b.Minutes); err != nil {
 		return fmt.Errorf("hours: %w", err)
 	}
 	if len(b.Registers) > 0 {
@@ -163,10 +165,19 @@ func (s *Store) update(f func(*bolt.Tx) error) error {
 	if s.closed {
 		return berrors.ErrDatabaseNotOpen
 	}
+	s.torn = nil
 	err := guard(func() error { return s.db.Update(f) })
 	s.measure()
+	if err == nil && len(s.torn) > 0 {
+		s.tornCount.Add(int64(len(s.torn)))
+		s.log.Warn("minutes cannot be read and are not in their hours", "file", s.path, "keys", len(s.torn), "err", s.torn[0])
+	}
 	return err
 }
+
+// Torn counts, since Open, the keys of minutes (up to eight loads each) that could not be
+// read when an hour was built from them. The log tells which.
+func (s *Store) Torn() int64 { return s.tornCount.Load() }
 
 func (s *Store) view(f func(*bolt.Tx) error) error {
 	return guard(func() error { return s.db.View(f) })

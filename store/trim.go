@@ -157,7 +157,7 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 	if err != nil {
 		return false, err
 	}
-	if err := advanceHours(tx, mark, keysATrim); err != nil {
+	if err := s.advanceHours(tx, mark, keysATrim); err != nil {
 		return false, err
 	}
 	if mark, err = readHourMark(tx); err != nil {
