@@ -26,7 +26,7 @@ type Hour struct {
 	Measured, Bridged, Missing float64 // s; Bridged is 0, for minutes do not tell it
 	Given, Taken               float64 // J
 	Duty                       float64 // W, mean over Measured
-	DutyMin, DutyMax           float64 // W
+	DutyMin, DutyMax           float64 // W, of the minutes that measured; 0 where none did
 	// Demand is the greatest mean duty of a quarter of an hour by the clock, in W:
 	// the sum of duty and measured time of its minutes over 900 s.
 	Demand float64
@@ -52,7 +52,8 @@ func (h *Hour) floats() [hourFloats]*float64 {
 var hourLike = forerunners{-1, -1, -1, -1, -1, -1, 5, 5, 5, -1, -1, -1, 11, -1}
 
 // Add makes h the sum of h and o: times, heat and mass add up, means are weighted by
-// Measured, and of Start and the extremes the least or greatest stands.
+// Measured, and of Start and the extremes the least or greatest stands. What measured
+// nothing has no extremes.
 func (h *Hour) Add(o Hour) {
 	if h.Minutes == 0 {
 		*h = o
@@ -60,6 +61,7 @@ func (h *Hour) Add(o Hour) {
 	}
 	h.Start = min(h.Start, o.Start)
 	h.Minutes += o.Minutes
+	h.DutyMin, h.DutyMax = extremes(h.DutyMin, h.DutyMax, h.Measured, o.DutyMin, o.DutyMax, o.Measured)
 	h.Duty = weighted(h.Duty, h.Measured, o.Duty, o.Measured)
 	h.Inlet = present(h.Inlet, h.Measured, o.Inlet, o.Measured)
 	h.Outlet = present(h.Outlet, h.Measured, o.Outlet, o.Measured)
@@ -69,10 +71,20 @@ func (h *Hour) Add(o Hour) {
 	h.Missing += o.Missing
 	h.Given += o.Given
 	h.Taken += o.Taken
-	h.DutyMin, h.DutyMax = min(h.DutyMin, o.DutyMin), max(h.DutyMax, o.DutyMax)
 	h.Demand = max(h.Demand, o.Demand)
 	h.HeatUncertainty += o.HeatUncertainty
 	h.Mass += o.Mass
+}
+
+// extremes leaves out those of what measured nothing.
+func extremes(lowA, highA, measuredA, lowB, highB, measuredB float64) (low, high float64) {
+	switch {
+	case measuredB == 0:
+		return lowA, highA
+	case measuredA == 0:
+		return lowB, highB
+	}
+	return min(lowA, lowB), max(highA, highB)
 }
 
 func weighted(a, wa, b, wb float64) float64 {
@@ -119,14 +131,14 @@ func (m *mean) value() float64 {
 
 func (s *hourSum) add(m *Minute) {
 	if s.Minutes == 0 {
-		s.Hour = Hour{Load: m.Load, Start: hourOf(m.Start), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
+		s.Hour = Hour{Load: m.Load, Start: hourOf(m.Start)}
 	}
+	s.DutyMin, s.DutyMax = extremes(s.DutyMin, s.DutyMax, s.Measured, m.DutyMin, m.DutyMax, m.Measured)
 	s.Minutes++
 	s.Measured += m.Measured
 	s.Missing += m.Missing
 	s.Given += m.Given
 	s.Taken += m.Taken
-	s.DutyMin, s.DutyMax = min(s.DutyMin, m.DutyMin), max(s.DutyMax, m.DutyMax)
 	s.duty += m.Duty * m.Measured
 	s.quarters[(m.Start-s.Start)/quarterNanos] += m.Duty * m.Measured
 	s.HeatUncertainty += m.DutyUncertainty * m.Measured
