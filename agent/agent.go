@@ -83,10 +83,13 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err := os.MkdirAll(a.o.Data, 0o750); err != nil {
 		return fmt.Errorf("data folder: %w", err)
 	}
-	db, err := store.Open(filepath.Join(a.o.Data, HistoryFile), store.Options{
+	db, err := openHistory(ctx, filepath.Join(a.o.Data, HistoryFile), store.Options{
 		MaxAge: a.site.History.MaxAge, MaxBytes: a.site.History.MaxBytes, Log: a.o.Log,
 	})
-	if err != nil {
+	switch {
+	case errors.Is(err, context.Canceled):
+		return nil // asked to stop before it began
+	case err != nil:
 		return err
 	}
 	defer func() { err = errors.Join(err, db.Close()) }()
