@@ -21,15 +21,14 @@ const (
 	sealSpan = 24 * time.Hour
 
 	// sealAtLeast is how many readings' worth of work a commit does to seal others,
-	// beside twice as many as it brings.
+	// beside what those that it brings will cost, and 1/sealSpare more to catch up.
 	sealAtLeast = 1 << 13
+	sealSpare   = 4
 	// sealColumn is what beginning a column costs, and sealWrite writing a block, in
-	// readings.
-	sealColumn = 1 << 8
-	sealWrite  = 1 << 13
-	// sealDecode is how many readings can be read from the journal for the cost of
-	// one in a column.
-	sealDecode = 4
+	// readings, each of which takes as long to be taken in from the journal as to be
+	// put in a column.
+	sealColumn = 1 << 5
+	sealWrite  = 1 << 14
 
 	defaultBeatAge = time.Hour
 )
@@ -51,6 +50,9 @@ type sealer struct {
 	writer  *blockWriter // nil: still taking in
 	block   []byte       // nil: not finished
 	failed  bool         // a failure has been logged
+
+	wide int // how many columns the block has, or the one before if more
+	owed int // what the last commit did beyond its share
 }
 
 func newSealer(next uint64) sealer {
@@ -60,7 +62,9 @@ func newSealer(next uint64) sealer {
 // seal does some of the work that there is, after a batch of readings. What fails is
 // logged once and tried again later: the readings are in the journal.
 func (s *Store) seal(readings int) {
-	for budget := sealAtLeast + 2*readings; budget > 0; {
+	budget := s.sealing.share(readings) - s.sealing.owed
+	s.sealing.owed = 0
+	for budget > 0 {
 		cost, err := s.sealStep()
 		if err != nil && !s.sealing.failed {
 			s.sealing.failed = true
@@ -71,7 +75,21 @@ func (s *Store) seal(readings int) {
 		}
 		budget -= cost
 	}
+	s.sealing.owed = -budget
 }
+
+// share is how much a commit of some readings is to do. It follows from what a block
+// costs: to take its readings in, to write each and begin the columns, and to put it in
+// the file.
+func (z *sealer) share(readings int) int {
+	tags := max(z.wide, len(z.columns))
+	enough := int64(z.wanted(tags))
+	block := 2*enough + sealColumn*int64(tags) + sealWrite
+	return sealAtLeast + int(int64(readings)*(block+block/sealSpare)/enough)
+}
+
+// wanted is how many readings make a block of so many columns.
+func (z *sealer) wanted(tags int) int { return min(max(z.enough, sealOfATag*tags), sealMost) }
 
 // sealStep does one thing and tells what it cost, 0 if there is nothing to do.
 func (s *Store) sealStep() (cost int, err error) {
@@ -109,7 +127,7 @@ func (s *Store) sealStep() (cost int, err error) {
 		return 0, nil
 	}
 	z.take(c, beats)
-	return 1 + int(c.readings)/sealDecode, nil
+	return 1 + int(c.readings), nil
 }
 
 // sealable returns the next group that can go into a block, or none.
@@ -162,14 +180,16 @@ func (z *sealer) take(c chunk, beats []Beat) {
 		}
 	}
 	z.span.last = c.last
-	enough := min(max(z.enough, sealOfATag*len(z.columns)), sealMost)
-	if int(z.span.readings) >= enough || beats[len(beats)-1].Through-z.begun >= int64(sealSpan) {
+	if int(z.span.readings) >= z.wanted(len(z.columns)) || beats[len(beats)-1].Through-z.begun >= int64(sealSpan) {
 		z.close()
 	}
 }
 
 // close ends the taking in.
-func (z *sealer) close() { z.tags, z.writer = z.columns.tags(), newBlockWriter(z.span) }
+func (z *sealer) close() {
+	z.tags, z.writer = z.columns.tags(), newBlockWriter(z.span)
+	z.wide = len(z.tags)
+}
 
 func (z *sealer) writeColumn() (cost int) {
 	if len(z.tags) == 0 {
@@ -201,8 +221,8 @@ func (s *Store) sealBlock() error {
 	if err != nil && err != errTrimmed {
 		return err
 	}
-	enough := z.enough
+	enough, wide := z.enough, z.wide
 	*z = newSealer(z.next)
-	z.enough = enough
+	z.enough, z.wide = enough, wide
 	return nil
 }
