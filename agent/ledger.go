@@ -9,7 +9,6 @@ import (
 
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
-	"heatreeve/agent/view"
 	"heatreeve/ingest"
 	"heatreeve/store"
 )
@@ -37,7 +36,7 @@ type ledger struct {
 	loadIDs     []uint32
 	batch       store.Batch
 	waiting     int // readings in batch
-	committed   []view.Registers
+	committed   []loads.Totals
 	through     atomic.Int64 // event time as last committed; for any goroutine
 	saved       time.Time    // of the last checkpoint
 	forced      bool         // the next commit must carry a checkpoint: the beats alone would not lead to the accounts
@@ -148,7 +147,10 @@ func (l *ledger) resume() error {
 // take gives the loads the registers that the history holds for them.
 func (l *ledger) take(known map[int]store.Register) {
 	for i, r := range known {
-		l.accounts.engine.SetRegisters(i, r.Given, r.Taken, nanoseconds(r.Measured), nanoseconds(r.Missing))
+		l.accounts.engine.SetRegisters(i, loads.Totals{
+			Given: r.Given, Taken: r.Taken, BridgedGiven: r.BridgedGiven, BridgedTaken: r.BridgedTaken,
+			Measured: nanoseconds(r.Measured), Bridged: nanoseconds(r.Bridged), Missing: nanoseconds(r.Missing),
+		})
 	}
 }
 
@@ -231,13 +233,17 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 }
 
 func (l *ledger) minute(m loads.Minute) store.Minute {
-	return store.Minute{
+	kept := store.Minute{
 		Load: l.loadIDs[m.Load], Start: m.Start,
-		Measured: seconds(m.Measured), Missing: seconds(m.Missing),
-		Given: m.Given, Taken: m.Taken,
-		Duty: m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
-		Flow: m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure,
+		Measured: seconds(m.Measured), Bridged: seconds(m.Bridged), Missing: seconds(m.Missing),
+		Given: m.Given, Taken: m.Taken, BridgedGiven: m.BridgedGiven, BridgedTaken: m.BridgedTaken,
+		Latent: seconds(m.Latent),
+		Duty:   m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
+		Flow: m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure, Content: m.Content,
+		Random: m.Random, Witness: m.Witness, Compared: m.Compared,
 	}
+	copy(kept.Systematic[:], m.Systematic[:])
+	return kept
 }
 
 func seconds(ns int64) float64 { return float64(ns) / 1e9 }
@@ -289,11 +295,12 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	return nil
 }
 
-func (l *ledger) writeRegisters(registers []view.Registers) {
+func (l *ledger) writeRegisters(registers []loads.Totals) {
 	l.batch.Registers = l.batch.Registers[:0]
 	for i, r := range registers {
 		l.batch.Registers = append(l.batch.Registers, store.Register{
-			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, Measured: seconds(r.Measured), Missing: seconds(r.Missing),
+			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, BridgedGiven: r.BridgedGiven, BridgedTaken: r.BridgedTaken,
+			Measured: seconds(r.Measured), Bridged: seconds(r.Bridged), Missing: seconds(r.Missing),
 		})
 	}
 }
@@ -320,11 +327,11 @@ func (l *ledger) trim(now int64) error {
 }
 
 // registers are the totals of the accounts as they stand.
-func (l *ledger) registers() []view.Registers {
+func (l *ledger) registers() []loads.Totals {
 	s := l.accounts.engine.Snapshot()
-	out := make([]view.Registers, len(s.Loads))
-	for i, r := range s.Loads {
-		out[i] = view.Registers{Given: r.Given, Taken: r.Taken, Measured: r.Measured, Missing: r.Missing}
+	out := make([]loads.Totals, len(s.Loads))
+	for i := range s.Loads {
+		out[i] = s.Loads[i].Totals
 	}
 	return out
 }

@@ -10,7 +10,6 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
-	"heatreeve/agent/view"
 	"heatreeve/ingest"
 	"heatreeve/store"
 )
@@ -120,7 +119,7 @@ func TestLedgerShowsWhatIsCommitted(t *testing.T) {
 	l, shut := open(t, parsed(t, benchSite), filepath.Join(t.TempDir(), "h.db"), store.Options{})
 	defer shut()
 	feed(l, 0, 100)
-	if l.committed[0] != (view.Registers{}) {
+	if l.committed[0] != (loads.Totals{}) {
 		t.Errorf("committed %+v before the first commit, want nothing", l.committed[0])
 	}
 	if err := l.commit(clock, false); err != nil {
@@ -135,7 +134,7 @@ func TestLedgerShowsWhatIsCommitted(t *testing.T) {
 func TestLedgerKeepsTheRegistersOfALoadThatWasAway(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "h.db")
 	both, one := parsed(t, benchSite+annex), parsed(t, benchSite)
-	run := func(s *site.Site, from, until int64) []view.Registers {
+	run := func(s *site.Site, from, until int64) []loads.Totals {
 		l, shut := open(t, s, path, store.Options{})
 		defer shut()
 		feed(l, from, until)

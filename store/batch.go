@@ -17,27 +17,44 @@ type Beat struct {
 	Readings []Reading
 }
 
+// Shares is how many parts the uncertainty of a record is told in. What they are, the
+// program that writes them knows; their order never changes, and new ones come last.
+const Shares = 16
+
 // Minute is what a load did in the minute that begins at Start (Unix
-// nanoseconds). Measured and Missing are in s, Given and Taken in J; Duty,
-// DutyMin, DutyMax and DutyUncertainty in W; Flow in kg/s; Inlet and Outlet in K;
-// Pressure in Pa, absolute.
+// nanoseconds). Times are in s and heat in J; Duty, DutyMin, DutyMax and
+// DutyUncertainty in W; Flow in kg/s; Inlet, Outlet and Content in K; Pressure in Pa,
+// absolute.
 type Minute struct {
 	Load  uint32
 	Start int64
 
-	Measured, Missing                       float64
-	Given, Taken                            float64
+	Measured, Bridged, Missing              float64
+	Given, Taken                            float64 // in the measured time
+	BridgedGiven, BridgedTaken              float64
+	Latent                                  float64 // s within Measured
 	Duty, DutyMin, DutyMax, DutyUncertainty float64
 	Flow                                    float64
 	Inlet, Outlet                           float64
 	Pressure                                float64
+	Content                                 float64
+	// Systematic is what each part adds to the uncertainty of the measured heat, signed,
+	// J, and Random the variance of what does not last, J². They are kept to a part in a
+	// thousand.
+	Systematic [Shares]float64
+	Random     float64
+	// Witness is the heat that another meter counted in spans that ended in this minute
+	// and were measured throughout, and Compared that of the load in the same spans.
+	Witness, Compared float64
 }
 
-// Register is the running total of a load: Given and Taken in J, Measured and
-// Missing in s. Retention never removes it.
+// Register is the running total of a load: heat in J, times in s. Retention never
+// removes it.
 type Register struct {
-	Load                            uint32
-	Given, Taken, Measured, Missing float64
+	Load                       uint32
+	Given, Taken               float64
+	BridgedGiven, BridgedTaken float64
+	Measured, Bridged, Missing float64
 }
 
 // Batch is what one [Store.Commit] writes in one transaction. Minutes and

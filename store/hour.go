@@ -23,20 +23,29 @@ type Hour struct {
 	// have none, so that what they miss of the hour is missing as well.
 	Minutes uint32
 
-	Measured, Bridged, Missing float64 // s; Bridged is 0, for minutes do not tell it
-	Given, Taken               float64 // J
+	Measured, Bridged, Missing float64 // s
+	Given, Taken               float64 // J, in the measured time
+	BridgedGiven, BridgedTaken float64 // J
+	Latent                     float64 // s within Measured
 	Duty                       float64 // W, mean over Measured
 	DutyMin, DutyMax           float64 // W, of the minutes that measured; 0 where none did
 	// Demand is the greatest mean duty of a quarter of an hour by the clock, in W:
 	// the sum of duty and measured time of its minutes over 900 s.
 	Demand float64
-	// HeatUncertainty is the sum of standard uncertainty and measured time, in J:
-	// that of Given less Taken when the errors of all minutes are the same one.
-	HeatUncertainty float64
-	Mass            float64 // kg, the sum of flow and measured time
+	// Systematic, J, and Random, J², are the sums of those of the minutes. The standard
+	// uncertainty of Given less Taken is the root of the sum of the squares of
+	// Systematic and of Random.
+	Systematic [Shares]float64
+	Random     float64
+	// HeatUncertainty is the sum of standard uncertainty and measured time, in J: what
+	// that of Given less Taken is at most, where the minutes do not tell its parts.
+	HeatUncertainty   float64
+	Witness, Compared float64 // J, the sums of those of the minutes
+	Mass              float64 // kg, the sum of flow and measured time
 	// Inlet and Outlet in K and Pressure in Pa, absolute, are means over the
-	// measured time of the minutes that have them, and 0 where none has.
-	Inlet, Outlet, Pressure float64
+	// measured time of the minutes that have them, and 0 where none has. So is Content,
+	// K, of a vessel.
+	Inlet, Outlet, Pressure, Content float64
 }
 
 // floats lists the fields in the order in which they are stored.

@@ -31,8 +31,8 @@ func picture() *view.Snapshot {
 		Site: "Brackwater Creamery",
 		At:   morning.Add(2*time.Hour + 31*time.Minute + 7*time.Second).UnixNano(),
 		Loads: []view.Load{
-			{Name: "hot-water", Figure: figure, Means: means, Booked: view.Registers{Given: 1.5234e6 * 3600}, Design: 640e3, Allow: 0.08, Verdict: design.Holding},
-			{Name: "chilled-glycol", Figure: loads.Figure{Idle: true}, Booked: view.Registers{Taken: 412.06e3 * 3600}, Means: [3]loads.Mean{{}, {Duty: 121e3, Coverage: 1}, {Duty: 160e3, Coverage: 1}}, Design: 180e3, Verdict: design.Idle},
+			{Name: "hot-water", Figure: figure, Means: means, Booked: loads.Totals{Given: 1.5234e6 * 3600}, Design: 640e3, Allow: 0.08, Verdict: design.Holding},
+			{Name: "chilled-glycol", Figure: loads.Figure{Idle: true}, Booked: loads.Totals{Taken: 412.06e3 * 3600}, Means: [3]loads.Mean{{}, {Duty: 121e3, Coverage: 1}, {Duty: 160e3, Coverage: 1}}, Design: 180e3, Verdict: design.Idle},
 			{Name: "dryer-air", Figure: loads.Figure{Fault: loads.Stale, Reason: `tag "TT-402": last reading is older than its max_age of 30 s`}, Design: 480e3, Verdict: design.Blind},
 			{Name: "tower", Figure: loads.Figure{Duty: -2.3456e3, Uncertainty: 21, MassFlow: 120.5, Inlet: 300.15, Outlet: 299.95}, Verdict: design.Undecided},
 		},

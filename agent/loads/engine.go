@@ -226,7 +226,7 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		if l.Minute.Begun && g >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}
-		l.book(g, span, e.cfg.Grid, e.cfg.Loads[i].Stream.Gives)
+		l.book(g, span, e.cfg.Grid, e.cfg.Loads[i].gives())
 		if g+span >= l.Minute.Sum.Start+minute {
 			closed = l.closeMinute(i, closed)
 		}

@@ -13,6 +13,8 @@ const (
 	Reverse          // flow is below zero by more than the idle threshold
 	Saturation       // a liquid near boiling, or a gas near its dew point
 	OutOfRange       // a state lies outside the fluid's range
+	Moving           // a vessel is being filled or drawn
+	Fitting          // too few readings yet to tell a rate
 )
 
 func (f Fault) String() string {
@@ -29,6 +31,10 @@ func (f Fault) String() string {
 		return "near saturation"
 	case OutOfRange:
 		return "out of range"
+	case Moving:
+		return "content changing"
+	case Fitting:
+		return "fitting"
 	}
 	return fmt.Sprintf("Fault(%d)", uint8(f))
 }
@@ -42,13 +48,20 @@ type Figure struct {
 	Reason      string // empty without a fault
 	Idle        bool
 	Duty        float64        // W, positive in the load's service
-	Uncertainty float64        // standard, W
-	Share       [Parts]float64 // signed contribution of each input to the standard uncertainty, W
-	MassFlow    float64        // kg/s
-	Density     float64        // at the meter, kg/m³
-	Inlet       float64        // K
-	Outlet      float64        // K
-	Pressure    float64        // at the inlet, Pa
+	Uncertainty float64        // standard, W: root of the sum of squares of Share and Random
+	Share       [Parts]float64 // signed systematic contribution of each part to the standard uncertainty, W
+	Random      float64        // standard uncertainty by what changes from reading to reading, W
+	// Variance is what Random adds to the variance of the heat in a second of the grid,
+	// W²·s: each input's squared share times the time for which one reading stands.
+	Variance float64
+	MassFlow float64 // kg/s
+	Density  float64 // at the meter, kg/m³
+	Inlet    float64 // K
+	Outlet   float64 // K
+	// Content is the temperature of a vessel's content, K, whose mass is Mass, kg, and
+	// Rate its fitted rise, K/s; 0 of a stream.
+	Content, Mass, Rate float64
+	Pressure            float64 // at the inlet, Pa
 	Remark
 	Until int64 // instant at which the first held input expires; MaxInt64 for constants alone
 }

@@ -61,6 +61,29 @@ type Tag struct {
 	Name     string
 	MaxAge   int64 // how long a reading is held, ns
 	Accuracy Accuracy
+	// Resolution is the step of the tag's numbers, and Deadband how far the quantity
+	// may move before a source that reports by exception tells of it; SI, 0 where
+	// unknown or none.
+	Resolution, Deadband float64
+	// OnChange says that the source reports by exception: a reading holds, whatever its
+	// age, while the source is alive. Alive is then the index of the tag that tells so:
+	// a reading of it that is not zero holds for its own MaxAge, and one of zero says
+	// that the source has gone. After a lapse a new reading is wanted.
+	OnChange bool
+	Alive    int
+	// Counter is set where the tag is a register that only rises.
+	Counter *Counter
+}
+
+// Counter is a register of volume or mass (for a flow) or of energy (for a witness)
+// that counts up, in SI: m³, kg, mol or J.
+type Counter struct {
+	// Modulus is the count at which the register starts again from zero; 0 where it
+	// does not roll over in its life.
+	Modulus float64
+	// Largest is the rate above which a difference is no count but a fault, in the unit
+	// of the register a second; 0 for no bound.
+	Largest float64
 }
 
 // Source is where an input comes from: a tag, or a constant where Tag < 0.
@@ -116,17 +139,86 @@ type Stream struct {
 	// IdleBelow is the flow, in the flow signal's SI unit, at or below which
 	// nothing is taken to flow.
 	IdleBelow float64
+	// Pair is the correlation of the errors of inlet and outlet thermometer, 0 to 1:
+	// that of a matched pair is near 1.
+	Pair float64
+	Corrections
 }
+
+// Corrections are what a stream may be corrected for. The zero value has none.
+type Corrections struct {
+	// Pump is the power that a pump or fan between the two thermometers leaves in the
+	// stream as heat, W: the stream serves it as well as what the thermometers show.
+	Pump    Source
+	HasPump bool
+	// Hold is the volume between the two thermometers, m³: the outlet is compared with
+	// the inlet of the parcel that leaves now (plug flow). 0 for none.
+	Hold float64
+	// Stored is the heat capacity of what lies between the thermometers, content and
+	// metal, J/K; its rise or fall over StoredOver, ns, is not the load's. 0 for none.
+	Stored     float64
+	StoredOver int64
+}
+
+// Vessel is a closed content whose temperature tells the heat that it takes up or
+// gives: a tank, a batch, a bed.
+type Vessel struct {
+	Fluid       thermo.Fluid
+	Temperature Source // K
+	Pressure    Source // absolute Pa; of a rigid vessel only with Rigid
+	// Rigid says that the vessel keeps its volume, so that its gas takes up
+	// dU = m·cv·dT; otherwise it stays at its pressure, and takes up dH = m·cp·dT.
+	Rigid bool
+	// Content is how much there is, in the unit of its kind.
+	Content     Source
+	ContentKind ContentKind
+	// Shell is the heat capacity of the wall that follows the content, J/K.
+	Shell float64
+	// Over is the span of readings through which the rate is fitted, ns.
+	Over int64
+	// Still is the change of the content over that span, as a fraction, above which
+	// the vessel is being filled or drawn, and its heat is not told by its temperature.
+	Still float64
+	// Gives is true where the content gives heat up in the load's service.
+	Gives bool
+	// IdleBelow is the duty, W, below which the content is taken to rest.
+	IdleBelow float64
+	Margin    float64 // K, as of a stream
+}
+
+// ContentKind tells what a vessel's content is measured in.
+type ContentKind uint8
+
+const (
+	ContentMass   ContentKind = iota + 1 // kg
+	ContentVolume                        // m³, at the vessel's temperature and pressure
+)
 
 // Load is one named heat load.
 type Load struct {
 	Name   string
 	Stream Stream
+	Vessel *Vessel // the load is this vessel, and no stream, where it is not nil
+	// Witness is the energy register of a heat meter in the same circuit, a counter in
+	// J, that the load is compared with. It takes no part in any figure.
+	Witness    Source
+	HasWitness bool
+}
+
+// gives tells which way the load serves.
+func (l *Load) gives() bool {
+	if l.Vessel != nil {
+		return l.Vessel.Gives
+	}
+	return l.Stream.Gives
 }
 
 // Config is the whole plant as the engine sees it.
 type Config struct {
-	Grid  int64 // ns; divides a minute
-	Tags  []Tag
-	Loads []Load
+	Grid int64 // ns; divides a minute
+	// Bridge is the longest time without data, ns, that is filled with a straight line
+	// between the duties at its ends once data come back; 0 for none.
+	Bridge int64
+	Tags   []Tag
+	Loads  []Load
 }

@@ -10,13 +10,29 @@ type Minute struct {
 	Start             int64   // first instant of the minute
 	Measured, Missing int64   // ns
 	Idle              int64   // ns, within Measured
-	Given, Taken      float64 // J that the stream gave up, and took up
-	Duty              float64 // mean, W, positive in the load's service
-	DutyMin, DutyMax  float64 // of the grid's figures, W
-	Uncertainty       float64 // mean standard uncertainty, W
+	Given, Taken      float64 // J that the stream gave up, and took up, in the measured time
+	// Bridged is the time that a straight line fills, ns, and BridgedGiven and
+	// BridgedTaken the heat in it, J. Measured, Bridged and Missing add up to the part
+	// of the minute that is accounted for.
+	Bridged                    int64
+	BridgedGiven, BridgedTaken float64
+	Latent                     int64   // ns within Measured whose duty is the sensible part only
+	Duty                       float64 // mean, W, positive in the load's service
+	DutyMin, DutyMax           float64 // of the grid's figures, W
+	Uncertainty                float64 // mean standard uncertainty, W
+	// Systematic is the signed contribution of each part to the uncertainty of the
+	// measured heat served, J: it adds up over minutes as it stands. Random is the
+	// variance by what does not last, J²: it adds up as variances do.
+	Systematic [Parts]float64
+	Random     float64
+	// Witness is what the load's witness counted, J, in the spans between two of its
+	// readings that ended in this minute and were measured throughout, and Compared the
+	// heat that the load served in them.
+	Witness, Compared float64
 	MassFlow          float64 // kg/s
 	Inlet, Outlet     float64 // K
 	Pressure          float64 // Pa
+	Content           float64 // K, of a vessel
 }
 
 // minuteSum gathers a [Minute]; means are kept as time-weighted sums in units of

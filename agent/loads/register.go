@@ -21,11 +21,12 @@ func (s *Sum) Add(x float64) {
 func (s Sum) Value() float64 { return s.Hi + s.Lo }
 
 // Registers are the totals of one load since it was first accounted for. Heat
-// in J only rises in each direction; Measured and Missing in ns add up to the
-// time accounted for.
+// in J only rises in each direction; Measured, Bridged and Missing in ns add up to the
+// time accounted for. What was bridged is not in Given and Taken but apart.
 type Registers struct {
-	Given, Taken      Sum
-	Measured, Missing int64
+	Given, Taken               Sum
+	BridgedGiven, BridgedTaken Sum
+	Measured, Bridged, Missing int64
 }
 
 // book adds heat in J, positive where the stream gave it up.

@@ -72,9 +72,13 @@ func (e *Engine) Restore(state []byte) error {
 }
 
 // SetRegisters gives load the totals that an earlier run left, where its state is
-// lost: heat in J, times in ns.
-func (e *Engine) SetRegisters(load int, given, taken float64, measured, missing int64) {
-	e.loads[load].Registers = Registers{Given: Sum{Hi: given}, Taken: Sum{Hi: taken}, Measured: measured, Missing: missing}
+// lost.
+func (e *Engine) SetRegisters(load int, t Totals) {
+	e.loads[load].Registers = Registers{
+		Given: Sum{Hi: t.Given}, Taken: Sum{Hi: t.Taken},
+		BridgedGiven: Sum{Hi: t.BridgedGiven}, BridgedTaken: Sum{Hi: t.BridgedTaken},
+		Measured: t.Measured, Bridged: t.Bridged, Missing: t.Missing,
+	}
 }
 
 // size sets what a window's length makes of the grid; it is not saved.

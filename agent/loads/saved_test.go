@@ -68,7 +68,7 @@ func TestRestoreRefusesWhatItDoesNotKnow(t *testing.T) {
 
 func TestSetRegisters(t *testing.T) {
 	e := engine(t, plant(liquid))
-	e.SetRegisters(0, 5e9, 1e6, 3*minute, minute)
+	e.SetRegisters(0, Totals{Given: 5e9, Taken: 1e6, Measured: 3 * minute, Missing: minute})
 	e.Advance(Beat{at(0, 2, 350, 330), through(1)}, nil)
 	l := e.Snapshot().Loads[0]
 	near(t, "given", l.Given, 5e9+160e3, 1e-6)

@@ -16,10 +16,16 @@ type LoadState struct {
 	// from the newest reading of each tag, also one that event time has not
 	// reached, but at most from the figure's own grid point; MaxInt64 for constants
 	// alone.
-	Until             int64
-	Means             [len(Windows)]Mean
-	Given, Taken      float64
-	Measured, Missing int64
+	Until int64
+	Means [len(Windows)]Mean
+	Totals
+}
+
+// Totals are the registers of a load as numbers: heat in J, times in ns.
+type Totals struct {
+	Given, Taken               float64
+	BridgedGiven, BridgedTaken float64
+	Measured, Bridged, Missing int64
 }
 
 // TagState is one tag in a [Snapshot].
@@ -64,11 +70,8 @@ func (e *Engine) until(load int) int64 {
 
 func (l *loadState) snapshot(through int64) LoadState {
 	s := LoadState{
-		Figure:   l.figure,
-		Given:    l.Registers.Given.Value(),
-		Taken:    l.Registers.Taken.Value(),
-		Measured: l.Registers.Measured,
-		Missing:  l.Registers.Missing,
+		Figure: l.figure,
+		Totals: l.Registers.totals(),
 	}
 	if l.figure.At == 0 {
 		s.Figure.Fault, s.Figure.Reason = NoReading, "no reading yet"
@@ -77,4 +80,12 @@ func (l *loadState) snapshot(through int64) LoadState {
 		s.Means[k] = l.Windows[k].mean(through)
 	}
 	return s
+}
+
+func (r *Registers) totals() Totals {
+	return Totals{
+		Given: r.Given.Value(), Taken: r.Taken.Value(),
+		BridgedGiven: r.BridgedGiven.Value(), BridgedTaken: r.BridgedTaken.Value(),
+		Measured: r.Measured, Bridged: r.Bridged, Missing: r.Missing,
+	}
 }

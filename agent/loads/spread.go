@@ -1,6 +1,9 @@
 package loads
 
-import "math"
+import (
+	"fmt"
+	"math"
+)
 
 // Part names one contribution to the uncertainty of a duty.
 type Part uint8
@@ -12,10 +15,22 @@ const (
 	PartPressure
 	PartOutletPressure
 	PartHumidity
-	PartCp // the first of those that are not an input's
+	PartPump
+	PartContent
+	PartPair // what the errors of inlet and outlet thermometer have in common
+	PartCp   // the first of those that are not an input's
 	PartDensity
 	Parts // how many there are
 )
+
+// String is the part's name in reports and in the working of a figure.
+func (p Part) String() string {
+	names := [Parts]string{"flow", "inlet", "outlet", "pressure", "outlet pressure", "humidity", "pump", "content", "matched pair", "heat capacity", "density"}
+	if p < Parts {
+		return names[p]
+	}
+	return fmt.Sprintf("Part(%d)", uint8(p))
+}
 
 // spread fills the figure's uncertainty: each input is moved by its standard
 // uncertainty up and down and half the change of duty is its contribution

@@ -24,7 +24,7 @@ func snapshot() *view.Snapshot {
 				Figure: loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
 				Until:  instant + 30e9,
 				Means:  [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
-				Booked: view.Registers{Given: 1.5e9, Taken: 2, Measured: 3600e9, Missing: 60e9},
+				Booked: loads.Totals{Given: 1.5e9, Taken: 2, Measured: 3600e9, Missing: 60e9},
 			},
 			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}},
 			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true}, Until: instant + 30e9},

@@ -30,16 +30,10 @@ type Load struct {
 	Figure  loads.Figure
 	Until   int64 // when the first input runs out of age; MaxInt64 for constants alone
 	Means   [len(loads.Windows)]loads.Mean
-	Booked  Registers // as last committed to disk
-	Design  float64   // expected duty, W; 0 where the load has none
-	Allow   float64   // allowance, fraction of Design
+	Booked  loads.Totals // as last committed to disk
+	Design  float64      // expected duty, W; 0 where the load has none
+	Allow   float64      // allowance, fraction of Design
 	Verdict design.Verdict
-}
-
-// Registers are the totals of a load: heat in J, times in ns.
-type Registers struct {
-	Given, Taken      float64
-	Measured, Missing int64
 }
 
 // Tag is one tag, with what became of its messages since the agent started.
