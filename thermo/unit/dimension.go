@@ -7,7 +7,8 @@ type Dimension uint8
 
 // A temperature is a point on a scale and a temperature difference a distance
 // along it: "20 °C" is 293.15 K as the first and 20 K as the second. A molar
-// flow is what a gas meter means by normal or standard volume.
+// flow is what a gas meter means by normal or standard volume a time, and an amount
+// what it has counted of it.
 const (
 	Temperature           Dimension = iota + 1 // K
 	TemperatureDifference                      // K
@@ -26,6 +27,9 @@ const (
 	Duration                                   // s
 	Size                                       // bytes of storage
 	MolarMass                                  // kg/mol
+	HeatCapacity                               // J/K
+	Amount                                     // mol
+	Count                                      // a number of pulses
 )
 
 var dimensions = [...]struct{ name, si string }{
@@ -46,6 +50,9 @@ var dimensions = [...]struct{ name, si string }{
 	Duration:              {"duration", "s"},
 	Size:                  {"storage size", "B"},
 	MolarMass:             {"molar mass", "kg/mol"},
+	HeatCapacity:          {"heat capacity", "J/K"},
+	Amount:                {"normal or standard volume", "mol"},
+	Count:                 {"count", "1"},
 }
 
 func (d Dimension) String() string {
@@ -55,7 +62,7 @@ func (d Dimension) String() string {
 	return dimensions[d].name
 }
 
-// SI is the symbol of the dimension's SI unit, "1" for a ratio and "B" for a size.
+// SI is the symbol of the dimension's SI unit, "1" for a ratio or a count and "B" for a size.
 func (d Dimension) SI() string {
 	if !d.valid() {
 		return ""

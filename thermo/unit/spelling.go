@@ -29,6 +29,7 @@ var tight = strings.NewReplacer(" / ", "/", " /", "/", "/ ", "/", " (", "(", "( 
 var ambiguous = map[string]string{
 	"scfm":  `say which reference, "scfm (60 °F)" as for natural gas or "scfm (68 °F)" as for compressed air; air at 0.075 lb/ft3 is "standard air cfm"`,
 	"SCFM":  `say which reference, "scfm (60 °F)" as for natural gas or "scfm (68 °F)" as for compressed air; air at 0.075 lb/ft3 is "standard air cfm"`,
+	"scf":   `say which reference, "scf (60 °F)" as for natural gas or "scf (68 °F)" as for compressed air`,
 	"ton":   `write "t" for the tonne, "short ton (US)", "long ton (UK)" or "ton of refrigeration"`,
 	"tons":  `write "t" for the tonne, "short ton (US)", "long ton (UK)" or "ton of refrigeration"`,
 	"therm": `write "therm (US)" or "therm (EC)"`,

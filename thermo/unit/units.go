@@ -7,6 +7,7 @@ import "slices"
 var table = slices.Concat(
 	temperatures, differences, pressures, massFlows, volumeFlows, molarFlows, masses, volumes,
 	energies, powers, specificHeats, specificEnthalpies, densities, ratios, durations, sizes, molarMasses,
+	heatCapacities, amounts, counts,
 )
 
 var temperatures = rows(Temperature,
@@ -205,4 +206,26 @@ var molarMasses = rows(MolarMass,
 	is("kg/kmol", 1e-3, si),
 	is("kg/mol", 1, si),
 	is("lb/lbmol", 1e-3, "a pound-mole is as many pounds as a gram-mole is grams", "lb/lb-mol"),
+)
+
+var heatCapacities = rows(HeatCapacity,
+	is("kJ/K", 1e3, si, "kJ/°C"),
+	is("MJ/K", 1e6, si, "MJ/°C"),
+	is("J/K", 1, si, "J/°C"),
+	is("kWh/K", 1e3*hour, nist, "kWh/°C"),
+	is("Btu/°F", btu*1.8, nist, "Btu_IT/°F", "Btu/F"),
+	is("kcal/K", 1e3*calIT, nist, "kcal/°C").noting("International Table"),
+)
+
+var amounts = rows(Amount,
+	is("Nm3", normal, din, "m3(N)", "m3n").noting("a real gas differs by its compressibility at the reference"),
+	is("Sm3", standard, iso, "m3(S)").noting("a real gas differs by its compressibility at the reference"),
+	is("scf (60 °F)", scf60*cubicFt, "natural-gas convention: 60 °F, 14.696 psia; ideal gas", "scf (60 degF, 14.696 psia)", "scf 60 °F"),
+	is("scf (68 °F)", scf68*cubicFt, "compressed-air convention: 68 °F, 14.696 psia; ideal gas", "scf (68 degF, 14.696 psia)", "scf 68 °F"),
+	is("mol", 1, si),
+	is("kmol", 1000, si),
+)
+
+var counts = rows(Count,
+	is("pulses", 1, "a number of events", "pulse", "counts", "count"),
 )
