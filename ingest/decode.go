@@ -132,7 +132,7 @@ func (d *Decoder) Decode(topic string, payload []byte, arrival int64, retained b
 	for _, w := range t.tags {
 		o := Outcome{Reading: Reading{Tag: w.tag}}
 		f := whole
-		if f == nil || (w.value < 0 && f.reason != Empty && f.reason != TooLarge) {
+		if !d.tags[w.tag].concerns(w, f) {
 			f = d.read(&o.Reading, w, payload, arrival, retained)
 		}
 		if f != nil {
@@ -190,6 +190,9 @@ func (d *Decoder) read(r *Reading, w wanted, payload []byte, arrival int64, reta
 }
 
 func (d *Decoder) value(tag *Tag, w wanted, payload []byte) (float64, *fault) {
+	if tag.Liveness != nil {
+		return d.liveness(tag, w, payload)
+	}
 	if w.value < 0 {
 		return bareNumber(payload)
 	}
@@ -207,7 +210,7 @@ func (d *Decoder) value(tag *Tag, w wanted, payload []byte) (float64, *fault) {
 
 func (d *Decoder) instant(tag *Tag, w wanted, arrival int64, retained bool) (int64, *fault) {
 	if w.time < 0 {
-		if retained {
+		if retained && (tag.Liveness == nil || !tag.Liveness.Kept) {
 			return 0, faultf(Retained, "was kept by the broker and carries no time, so its age is unknown; publish with a time stamp, or without retain")
 		}
 		return arrival, nil

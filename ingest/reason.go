@@ -17,6 +17,7 @@ const (
 	WrongType                  // text, true, false, list or object where a number should be
 	NotANumber                 // a bare payload that is no decimal number
 	NotFinite                  // NaN, Inf or beyond the range of a float64
+	WrongWord                  // neither of the two words of an availability topic
 	Retained                   // kept by the broker and without a stamp: its age is unknown
 	TimeMissing                // the time pointer finds nothing, or null
 	TimeWrong                  // the stamp cannot be read
@@ -31,7 +32,7 @@ const (
 var reasonNames = [reasons]string{
 	Empty: "empty", TooLarge: "too-large", NotJSON: "not-json", Truncated: "truncated",
 	ValueMissing: "value-missing", NullValue: "null-value", WrongType: "wrong-type",
-	NotANumber: "not-a-number", NotFinite: "not-finite", Retained: "retained",
+	NotANumber: "not-a-number", NotFinite: "not-finite", WrongWord: "wrong-word", Retained: "retained",
 	TimeMissing: "time-missing", TimeWrong: "time-wrong", UnsetClock: "unset-clock",
 	Ahead: "ahead", OutOfRange: "out-of-range", Overflow: "overflow",
 }

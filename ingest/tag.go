@@ -36,6 +36,9 @@ type Tag struct {
 	Offset     float64 // SI = Scale·x + Offset
 	Min, Max   float64 // SI, instrument range, both ends allowed; ±Inf: no limit
 	QoS        byte    // 0 or 1; 1 is needed for delivery after a crash
+	// Liveness is set where the messages tell not a value but whether their source is
+	// alive.
+	Liveness *Liveness
 }
 
 // check returns every fault of the tag, joined.
@@ -55,7 +58,7 @@ func (t Tag) check() error {
 			fault("%w", err)
 		}
 	}
-	if t.Value == "" && t.Time != "" {
+	if t.Value == "" && t.Time != "" && !t.heartbeat() {
 		fault("time pointer %q without a value pointer: a bare number carries no stamp", t.Time)
 	}
 	switch t.TimeFormat {
@@ -65,6 +68,9 @@ func (t Tag) check() error {
 	}
 	if !finite(t.Scale) || t.Scale == 0 || !finite(t.Offset) {
 		fault("scale %v and offset %v must be finite and the scale not 0", t.Scale, t.Offset)
+	}
+	if l := t.Liveness; l != nil && l.Online == l.Offline && l.Online != "" {
+		fault("online and offline are the same word %q", l.Online)
 	}
 	if !(t.Min < t.Max) {
 		fault("minimum %v is not below maximum %v", t.Min, t.Max)
