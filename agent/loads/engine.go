@@ -21,6 +21,7 @@ type Engine struct {
 	loads     []loadState
 	tally     []Tally
 	users     [][]int // loads that read each tag
+	onChange  []int   // tags that report by exception
 }
 
 // loadState is what the engine keeps of one load.
@@ -38,8 +39,8 @@ type Tally struct{ Repeated, Late, Crowded uint64 }
 // New returns an engine without history. The error names what in cfg cannot be
 // computed with.
 func New(cfg Config) (*Engine, error) {
-	if cfg.Grid <= 0 || minute%cfg.Grid != 0 {
-		return nil, fmt.Errorf("grid of %g s does not divide a minute", float64(cfg.Grid)/1e9)
+	if err := cfg.check(); err != nil {
+		return nil, err
 	}
 	e := &Engine{
 		cfg:   cfg,
@@ -47,6 +48,11 @@ func New(cfg Config) (*Engine, error) {
 		loads: make([]loadState, len(cfg.Loads)),
 		tally: make([]Tally, len(cfg.Tags)),
 		users: make([][]int, len(cfg.Tags)),
+	}
+	for i := range cfg.Tags {
+		if cfg.Tags[i].OnChange {
+			e.onChange = append(e.onChange, i)
+		}
 	}
 	for i := range e.loads {
 		q, err := equationOf(&cfg.Loads[i].Stream)
@@ -84,10 +90,11 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 	}
 	for e.next+e.cfg.Grid <= e.through {
 		g := e.next
-		e.reach(g)
+		e.arrive(g)
 		span := e.cfg.Grid
 		if !e.evaluateAll(g) {
 			span = e.silence(g)
+			e.lapse(g + span - e.cfg.Grid)
 		}
 		closed = e.book(g, span, closed)
 		e.next = g + span
@@ -112,8 +119,13 @@ func (e *Engine) Adopt(b Beat) {
 	}
 	e.through = max(e.through, b.Through)
 	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin()) && next > e.next {
-		e.next = next
-		e.reach(next)
+		for e.next < next {
+			e.arrive(e.next)
+			span := min(e.silence(e.next), next-e.next)
+			e.next += span
+			e.lapse(e.next - e.cfg.Grid)
+		}
+		e.arrive(next)
 		for i := range e.loads {
 			e.loads[i].Minute.Begun = false // the part that it holds was booked elsewhere
 		}
@@ -165,6 +177,12 @@ func (e *Engine) begin() bool {
 	}
 	e.next = ceil(max(first, e.through-reachBack), e.cfg.Grid)
 	return true
+}
+
+// arrive brings what the tags hold, and whether it holds, to g.
+func (e *Engine) arrive(g int64) {
+	e.reach(g)
+	e.lapse(g)
 }
 
 // reach holds the newest reading of each tag at g and marks the figures that

@@ -81,11 +81,18 @@ func (e *Engine) read(f *Figure, src Source, value, u *float64) bool {
 	case !h.Has:
 		*f = f.fail(NoReading, fmt.Sprintf("tag %q has sent nothing yet", tag.Name))
 		return false
+	case tag.OnChange:
+		if s := e.standing(src.Tag, f.At); s != holds {
+			*f = f.fail(e.unusable(src.Tag, s))
+			return false
+		}
 	case f.At-h.At >= tag.MaxAge:
 		*f = f.fail(Stale, fmt.Sprintf("tag %q: last reading is older than its max_age of %g s", tag.Name, float64(tag.MaxAge)/1e9))
 		return false
 	}
 	*value, *u = h.Value, tag.Accuracy.Standard(h.Value)
-	f.Until = min(f.Until, h.At+tag.MaxAge)
+	if !tag.OnChange {
+		f.Until = min(f.Until, after(h.At, tag.MaxAge))
+	}
 	return true
 }

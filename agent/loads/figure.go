@@ -63,7 +63,7 @@ type Figure struct {
 	Content, Mass, Rate float64
 	Pressure            float64 // at the inlet, Pa
 	Remark
-	Until int64 // instant at which the first held input expires; MaxInt64 for constants alone
+	Until int64 // instant at which the figure must be worked anew, where no tag reports before
 }
 
 // Measured reports whether the figure may be booked.

@@ -59,11 +59,7 @@ func (e *Engine) until(load int) int64 {
 	}
 	until := int64(math.MaxInt64)
 	for _, src := range needs {
-		if src.Tag >= 0 {
-			t := &e.tags[src.Tag]
-			newest := min(max(t.Held.At, t.Newest), e.loads[load].figure.At)
-			until = min(until, newest+e.cfg.Tags[src.Tag].MaxAge)
-		}
+		until = min(until, e.expiry(src, e.loads[load].figure.At))
 	}
 	return until
 }

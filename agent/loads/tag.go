@@ -32,8 +32,12 @@ type tagState struct {
 	Held    held
 	Pending []sample // stamped after the last booked grid point, by stamp
 	Newest  int64    // newest stamp taken; 0 before the first
-	recent  []int64  // ring of stamps taken
-	next    int      // where the ring is written next
+	// Lapse is the newest grid point at which an on-change tag had no sign of life: a
+	// reading from before it does not hold. 0 for none.
+	Lapse    int64
+	standing standing // of an on-change tag at the grid point last computed
+	recent   []int64  // ring of stamps taken
+	next     int      // where the ring is written next
 }
 
 // take files one reading. Booked is the newest grid point already computed. Of the
