@@ -24,15 +24,6 @@ type Engine struct {
 	onChange  []int   // tags that report by exception
 }
 
-// loadState is what the engine keeps of one load.
-type loadState struct {
-	Registers Registers
-	Windows   [len(Windows)]Window
-	Minute    minuteSum
-	figure    Figure
-	fresh     bool // figure was worked from the values held now
-}
-
 // Tally counts what became of a tag's readings.
 type Tally struct{ Repeated, Late, Crowded uint64 }
 
@@ -61,9 +52,7 @@ func New(cfg Config) (*Engine, error) {
 		}
 		e.equations = append(e.equations, q)
 		e.enlist(i)
-		for k, length := range Windows {
-			e.loads[i].Windows[k] = newWindow(length, cfg.Grid)
-		}
+		e.loads[i] = newLoad(&cfg, i)
 	}
 	return e, nil
 }
@@ -127,7 +116,7 @@ func (e *Engine) Adopt(b Beat) {
 		}
 		e.arrive(next)
 		for i := range e.loads {
-			e.loads[i].Minute.Begun = false // the part that it holds was booked elsewhere
+			e.loads[i].forget()
 		}
 	}
 }
@@ -241,48 +230,11 @@ func (e *Engine) silence(g int64) int64 {
 func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 	for i := range e.loads {
 		l := &e.loads[i]
-		if l.Minute.Begun && g >= l.Minute.Sum.Start+minute {
-			closed = l.closeMinute(i, closed)
-		}
-		l.book(g, span, e.cfg.Grid, e.cfg.Loads[i].gives())
-		if g+span >= l.Minute.Sum.Start+minute {
-			closed = l.closeMinute(i, closed)
+		l.book(g, span)
+		if len(l.closed) > 0 {
+			closed = append(closed, l.closed...)
+			l.closed = l.closed[:0]
 		}
 	}
 	return closed
-}
-
-func (l *loadState) closeMinute(load int, closed []Minute) []Minute {
-	if m, ok := l.Minute.close(load); ok {
-		closed = append(closed, m)
-	}
-	return closed
-}
-
-// book adds the present figure over span. The registers know which way the stream's
-// heat went; windows and duty are positive in the load's service.
-func (l *loadState) book(g, span, grid int64, gives bool) {
-	f := &l.figure
-	l.Minute.book(f, g, span, gives)
-	if !f.Measured() {
-		l.Registers.Missing += span
-		for k := range l.Windows {
-			l.Windows[k].book(g+span-grid, 0, 0)
-		}
-		return
-	}
-	heat := f.Duty * (float64(span) / 1e9)
-	l.Registers.book(givenUp(heat, gives), span)
-	for k := range l.Windows {
-		l.Windows[k].book(g, heat, span)
-	}
-}
-
-// givenUp turns heat that is positive in the load's service into heat that is
-// positive where the stream gave it up.
-func givenUp(heat float64, gives bool) float64 {
-	if gives {
-		return heat
-	}
-	return -heat
 }

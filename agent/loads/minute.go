@@ -4,7 +4,7 @@ import "math"
 
 // Minute is what a load did in one minute of event time. Means are over the
 // measured time, those of temperatures and pressure over the part of it that
-// was not idle. A minute without measured time has no record.
+// was not idle. A minute that was all missing has no record.
 type Minute struct {
 	Load              int     // index into [Config.Loads]
 	Start             int64   // first instant of the minute
@@ -42,16 +42,33 @@ type minuteSum struct {
 	Begun bool
 }
 
-func (m *minuteSum) book(f *Figure, g, span int64, gives bool) {
-	s := &m.Sum
+// at makes the sum that of the minute of g.
+func (m *minuteSum) at(g int64) *Minute {
 	if !m.Begun {
-		*s = Minute{Start: floor(g, minute), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
+		m.Sum = Minute{Start: floor(g, minute), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
 		m.Begun = true
 	}
-	if !f.Measured() {
-		s.Missing += span
-		return
+	return &m.Sum
+}
+
+// miss adds time without a figure.
+func (m *minuteSum) miss(g, span int64) { m.at(g).Missing += span }
+
+// bridge adds time that a straight line fills, with its heat, positive where it was
+// given up.
+func (m *minuteSum) bridge(heat float64, g, span int64) {
+	s := m.at(g)
+	s.Bridged += span
+	if heat >= 0 {
+		s.BridgedGiven += heat
+	} else {
+		s.BridgedTaken -= heat
 	}
+}
+
+// measure adds a figure over [g, g+span).
+func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
+	s := m.at(g)
 	dt := float64(span) / 1e9
 	s.Measured += span
 	s.Duty += f.Duty * dt
@@ -65,22 +82,31 @@ func (m *minuteSum) book(f *Figure, g, span int64, gives bool) {
 		s.Idle += span
 		return
 	}
+	if f.Latent {
+		s.Latent += span
+	}
 	s.Uncertainty += f.Uncertainty * dt
+	for p, share := range f.Share {
+		s.Systematic[p] += share * dt
+	}
+	s.Random += f.Variance * dt
 	s.MassFlow += f.MassFlow * dt
 	s.Inlet += f.Inlet * dt
 	s.Outlet += f.Outlet * dt
 	s.Pressure += f.Pressure * dt
+	s.Content += f.Content * dt
 }
 
 // close returns the finished minute and starts afresh; false where nothing of it
-// was measured.
+// was measured or bridged.
 func (m *minuteSum) close(load int) (Minute, bool) {
 	s := m.Sum
 	m.Begun = false
-	if s.Measured == 0 {
-		return s, false
-	}
 	s.Load = load
+	if s.Measured == 0 {
+		s.DutyMin, s.DutyMax = 0, 0
+		return s, s.Bridged > 0
+	}
 	measured := float64(s.Measured) / 1e9
 	s.Duty /= measured
 	s.Uncertainty /= measured
@@ -89,6 +115,7 @@ func (m *minuteSum) close(load int) (Minute, bool) {
 		s.Inlet /= flowing
 		s.Outlet /= flowing
 		s.Pressure /= flowing
+		s.Content /= flowing
 	}
 	return s, true
 }

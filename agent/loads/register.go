@@ -38,3 +38,13 @@ func (r *Registers) book(heat float64, span int64) {
 		r.Taken.Add(-heat)
 	}
 }
+
+// bridge adds heat in J that a straight line gives, with the sign of book.
+func (r *Registers) bridge(heat float64, span int64) {
+	r.Bridged += span
+	if heat >= 0 {
+		r.BridgedGiven.Add(heat)
+	} else {
+		r.BridgedTaken.Add(-heat)
+	}
+}

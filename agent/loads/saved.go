@@ -59,8 +59,7 @@ func (e *Engine) Restore(state []byte) error {
 	for i := range e.loads {
 		l, ok := s.Loads[e.cfg.Loads[i].Name]
 		if ok && s.Grid == e.cfg.Grid {
-			e.loads[i] = l
-			e.loads[i].size(e.cfg.Grid)
+			e.loads[i].resume(l)
 		} else if ok {
 			e.loads[i].Registers = l.Registers
 		}
@@ -78,12 +77,5 @@ func (e *Engine) SetRegisters(load int, t Totals) {
 		Given: Sum{Hi: t.Given}, Taken: Sum{Hi: t.Taken},
 		BridgedGiven: Sum{Hi: t.BridgedGiven}, BridgedTaken: Sum{Hi: t.BridgedTaken},
 		Measured: t.Measured, Bridged: t.Bridged, Missing: t.Missing,
-	}
-}
-
-// size sets what a window's length makes of the grid; it is not saved.
-func (l *loadState) size(grid int64) {
-	for k, length := range Windows {
-		l.Windows[k].parts = newWindow(length, grid).parts
 	}
 }

@@ -19,6 +19,9 @@ type LoadState struct {
 	Until int64
 	Means [len(Windows)]Mean
 	Totals
+	// Undecided is the time, ns, up to the snapshot's Through that is in no total yet,
+	// since what comes next decides on it: a gap that may be bridged.
+	Undecided int64
 }
 
 // Totals are the registers of a load as numbers: heat in J, times in ns.
@@ -69,6 +72,7 @@ func (l *loadState) snapshot(through int64) LoadState {
 		Figure: l.figure,
 		Totals: l.Registers.totals(),
 	}
+	s.Undecided = l.undecided(through)
 	if l.figure.At == 0 {
 		s.Figure.Fault, s.Figure.Reason = NoReading, "no reading yet"
 	}
