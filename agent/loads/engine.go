@@ -178,8 +178,8 @@ func (e *Engine) arrive(g int64) {
 // depend on it.
 func (e *Engine) reach(g int64) {
 	for i := range e.tags {
-		t := &e.tags[i]
-		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g) {
+		t, tag := &e.tags[i], &e.cfg.Tags[i]
+		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g, tag.MaxAge, tag.scatters()) {
 			e.touch(i)
 		}
 	}

@@ -18,8 +18,8 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 	q := &e.equations[load]
 	f := Figure{At: g, Until: math.MaxInt64}
 	var x State
-	var u [PartCp]float64
-	if !e.read(&f, q.Flow, &x.Flow, &u[PartFlow]) {
+	var d [PartCp]doubt
+	if !e.read(&f, q.Flow, &x.Flow, &d[PartFlow]) {
 		return f
 	}
 	if x.Flow == 0 || math.Abs(x.Flow) <= q.IdleBelow {
@@ -29,22 +29,22 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 	if x.Flow < 0 {
 		return f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.Flow))
 	}
-	ok := e.read(&f, q.Inlet, &x.Inlet, &u[PartInlet]) &&
-		e.read(&f, q.Outlet, &x.Outlet, &u[PartOutlet]) &&
-		e.read(&f, q.Pressure, &x.Pressure, &u[PartPressure]) &&
-		e.read(&f, q.OutletPressure, &x.OutletPressure, &u[PartOutletPressure]) &&
-		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &u[PartHumidity])) &&
-		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(float64)))
+	ok := e.read(&f, q.Inlet, &x.Inlet, &d[PartInlet]) &&
+		e.read(&f, q.Outlet, &x.Outlet, &d[PartOutlet]) &&
+		e.read(&f, q.Pressure, &x.Pressure, &d[PartPressure]) &&
+		e.read(&f, q.OutletPressure, &x.OutletPressure, &d[PartOutletPressure]) &&
+		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &d[PartHumidity])) &&
+		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(doubt)))
 	if !ok {
 		return f
 	}
 	if q.OutletPressure == q.Pressure {
-		u[PartOutletPressure] = 0 // moves with the inlet's
+		d[PartOutletPressure] = doubt{} // moves with the inlet's
 	}
-	return q.figure(f, &x, &u)
+	return q.figure(f, &x, &d)
 }
 
-func (q *equation) figure(f Figure, x *State, u *[PartCp]float64) Figure {
+func (q *equation) figure(f Figure, x *State, d *[PartCp]doubt) Figure {
 	m, err := q.medium(x)
 	if err != nil {
 		return f.fail(OutOfRange, err.Error())
@@ -57,7 +57,7 @@ func (q *equation) figure(f Figure, x *State, u *[PartCp]float64) Figure {
 	if err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	if err := q.spread(&f, &m, x, u, &r); err != nil {
+	if err := q.spread(&f, &m, x, d, &r); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
 	f.Duty, f.MassFlow, f.Density, f.Remark = r.Duty, r.MassFlow, r.Density, remark
@@ -69,11 +69,11 @@ func (f Figure) fail(why Fault, reason string) Figure {
 	return Figure{At: f.At, Until: f.Until, Fault: why, Reason: reason}
 }
 
-// read puts the value of src and its standard uncertainty in place; it marks f
+// read puts the value of src and what may be wrong with it in place; it marks f
 // and returns false where there is none to use.
-func (e *Engine) read(f *Figure, src Source, value, u *float64) bool {
+func (e *Engine) read(f *Figure, src Source, value *float64, d *doubt) bool {
 	if src.Tag < 0 {
-		*value, *u = src.Value, 0
+		*value, *d = src.Value, doubt{}
 		return true
 	}
 	tag, h := &e.cfg.Tags[src.Tag], &e.tags[src.Tag].Held
@@ -90,7 +90,7 @@ func (e *Engine) read(f *Figure, src Source, value, u *float64) bool {
 		*f = f.fail(Stale, fmt.Sprintf("tag %q: last reading is older than its max_age of %g s", tag.Name, float64(tag.MaxAge)/1e9))
 		return false
 	}
-	*value, *u = h.Value, tag.Accuracy.Standard(h.Value)
+	*value, *d = h.Value, tag.doubt(h.Value, &e.tags[src.Tag].Scatter)
 	if !tag.OnChange {
 		f.Until = min(f.Until, after(h.At, tag.MaxAge))
 	}

@@ -20,12 +20,13 @@ const (
 	PartPair // what the errors of inlet and outlet thermometer have in common
 	PartCp   // the first of those that are not an input's
 	PartDensity
-	Parts // how many there are
+	PartStrength // of a mixture: cp and density, which one error of it moves together
+	Parts        // how many there are
 )
 
 // String is the part's name in reports and in the working of a figure.
 func (p Part) String() string {
-	names := [Parts]string{"flow", "inlet", "outlet", "pressure", "outlet pressure", "humidity", "pump", "content", "matched pair", "heat capacity", "density"}
+	names := [Parts]string{"flow", "inlet", "outlet", "pressure", "outlet pressure", "humidity", "pump", "content", "matched pair", "heat capacity", "density", "strength"}
 	if p < Parts {
 		return names[p]
 	}
@@ -34,50 +35,82 @@ func (p Part) String() string {
 
 // spread fills the figure's uncertainty: each input is moved by its standard
 // uncertainty up and down and half the change of duty is its contribution
-// (JCGM 100:2008, 5.1.3, note 2); contributions of independent inputs add as
-// root of the sum of squares. The error is that of the heat equation where an
-// input can be moved neither way inside the fluid's range.
-func (q *equation) spread(f *Figure, m *medium, x *State, u *[PartCp]float64, centre *Result) error {
-	for part, ui := range u {
-		if ui == 0 {
+// (JCGM 100:2008, 5.1.3, note 2), and in proportion that of what else may be wrong with
+// it. What the errors
+// of a matched pair have in common is a contribution of its own, so that those that are
+// left are independent of each other and add as root of the sum of squares. The error is
+// that of the heat equation where an input can be moved neither way inside the fluid's
+// range.
+func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt, centre *Result) error {
+	var random float64
+	for part := range inputs {
+		d := &inputs[part]
+		u := d.step()
+		if u == 0 {
 			continue
 		}
-		half, err := q.swing(m, x, Part(part), ui, centre)
+		half, err := q.swing(m, x, Part(part), u, centre)
 		if err != nil {
 			return err
 		}
-		f.Share[part] = half
+		c := half / u
+		if q.Pair > 0 && (Part(part) == PartInlet || Part(part) == PartOutlet) {
+			f.Share[part] = c * d.lasting(q.Pair)
+			f.Share[PartPair] += c * d.accuracy * math.Sqrt(q.Pair)
+		} else {
+			f.Share[part] = c * d.lasting(0)
+		}
+		random += c * c * d.scatter
+		f.Variance += c * c * d.rate
 	}
+	q.property(f, m, x, centre.Duty)
+	f.Random = math.Sqrt(random)
+	f.Uncertainty = math.Sqrt(sumOfSquares(f.Share[:]) + random)
+	return nil
+}
+
+// property fills in what the fluid's own figures leave open. Those of cp at both ends are
+// taken for one error, the greater of the two.
+func (q *equation) property(f *Figure, m *medium, x *State, duty float64) {
 	cpIn, densityIn := m.Uncertainty(x.Inlet, x.Pressure)
 	cpOut, densityOut := m.Uncertainty(x.Outlet, x.OutletPressure)
-	f.Share[PartCp] = centre.Duty * max(cpIn, cpOut)
+	f.Share[PartCp] = duty * max(cpIn, cpOut)
 	if q.FlowKind == VolumeFlow {
 		density := densityIn
 		if q.MeterAtOutlet {
 			density = densityOut
 		}
-		f.Share[PartDensity] = centre.Duty * density
+		f.Share[PartDensity] = duty * density
 	}
-	var sum float64
-	for _, share := range f.Share {
-		sum += share * share
-	}
-	f.Uncertainty = math.Sqrt(sum)
-	return nil
 }
 
-// swing returns half the change of duty as one input goes from u below to u
-// above; at the edge of the fluid's range, the change on the side that is left.
+// sumOfSquares is the variance by contributions that are independent of each other.
+func sumOfSquares(contributions []float64) float64 {
+	var sum float64
+	for _, c := range contributions {
+		sum += c * c
+	}
+	return sum
+}
+
+// swing is the contribution of one input that is off by u.
 func (q *equation) swing(m *medium, x *State, part Part, u float64, centre *Result) (float64, error) {
 	up, errUp := q.beside(m, x, q.moved(*x, part, u), centre)
 	down, errDown := q.beside(m, x, q.moved(*x, part, -u), centre)
+	return contribution(centre.Duty, up, down, errUp, errDown)
+}
+
+// contribution returns half the change of a result as one of its causes goes from one
+// standard uncertainty below to one above; at the edge of the fluid's range, the change on
+// the side that is left.
+func contribution(centre, up, down float64, errUp, errDown error) (float64, error) {
 	switch {
 	case errUp == nil && errDown == nil:
 		return (up - down) / 2, nil
 	case errUp == nil:
-		return up - centre.Duty, nil
+		return up - centre, nil
 	case errDown == nil:
-		return centre.Duty - down, nil
+		return centre - down, nil
 	}
 	return 0, errUp
 }

@@ -32,6 +32,7 @@ type tagState struct {
 	Held    held
 	Pending []sample // stamped after the last booked grid point, by stamp
 	Newest  int64    // newest stamp taken; 0 before the first
+	Scatter scatter  // of the readings held so far
 	// Lapse is the newest grid point at which an on-change tag had no sign of life: a
 	// reading from before it does not hold. 0 for none.
 	Lapse    int64
@@ -86,8 +87,10 @@ func (t *tagState) remember(at int64) {
 }
 
 // reach moves the readings stamped at or before g out of the wait and holds the
-// newest; it reports whether the held value changed.
-func (t *tagState) reach(g int64) bool {
+// newest; it reports whether the held value changed. Those of a tag whose readings
+// scatter tell how far, from one that is not older than maxAge to the next; so every
+// reading counts that is held at a grid point, and no other.
+func (t *tagState) reach(g, maxAge int64, scatters bool) bool {
 	n := 0
 	for n < len(t.Pending) && t.Pending[n].At <= g {
 		n++
@@ -95,8 +98,12 @@ func (t *tagState) reach(g int64) bool {
 	if n == 0 {
 		return false
 	}
-	last := t.Pending[n-1]
-	t.Held = held{At: last.At, Value: last.Value, Has: true}
+	for _, s := range t.Pending[:n] {
+		if scatters {
+			t.Scatter.observe(t.Held, s, maxAge)
+		}
+		t.Held = held{At: s.At, Value: s.Value, Has: true}
+	}
 	t.Pending = slices.Delete(t.Pending, 0, n)
 	return true
 }
