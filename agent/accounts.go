@@ -46,11 +46,13 @@ func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*acc
 func (a *accounts) advance(b loads.Beat) []loads.Minute {
 	a.closed = a.engine.Advance(b, a.closed[:0])
 	for _, m := range a.closed {
+		lasting, random := m.Doubt()
 		a.judges[m.Load].Observe(design.Minute{
 			Start:       m.Start,
 			Whole:       m.Measured-m.Idle >= int64(wholeMinute),
 			Duty:        m.Duty,
-			Uncertainty: m.Uncertainty,
+			Uncertainty: lasting,
+			Random:      random,
 		})
 	}
 	return a.closed

@@ -64,12 +64,14 @@ type Target struct {
 }
 
 // Minute is one minute of a load: the mean duty and its standard uncertainty in
-// W. Whole is false where part of it was missing or idle.
+// W by what lasts, and the variance in W² by what does not. Whole is false where part of
+// it was missing or idle.
 type Minute struct {
 	Start       int64 // ns
 	Whole       bool
 	Duty        float64
 	Uncertainty float64
+	Random      float64
 }
 
 const nanosecondsPerMinute = int64(time.Minute)
@@ -147,20 +149,22 @@ func (j *Judge) decide() Verdict {
 
 type summary struct{ mean, uncertainty, least, most float64 }
 
-// summarise returns the mean duty and mean uncertainty (systematic parts do not
-// average out) and the extremes; false where a minute is not whole.
+// summarise returns the mean duty, its uncertainty (systematic parts do not average out,
+// random ones do) and the extremes; false where a minute is not whole.
 func summarise(minutes []Minute) (summary, bool) {
 	s := summary{least: math.Inf(1), most: math.Inf(-1)}
+	var random float64
 	for _, m := range minutes {
 		if !m.Whole {
 			return s, false
 		}
 		s.mean += m.Duty
 		s.uncertainty += m.Uncertainty
+		random += m.Random
 		s.least, s.most = min(s.least, m.Duty), max(s.most, m.Duty)
 	}
 	n := float64(len(minutes))
 	s.mean /= n
-	s.uncertainty /= n
+	s.uncertainty = math.Hypot(s.uncertainty, math.Sqrt(random)) / n
 	return s, true
 }

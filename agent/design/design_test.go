@@ -105,3 +105,20 @@ func TestRestoreGoesOn(t *testing.T) {
 		t.Errorf("verdict %v after a restart in between, want short", k.Last)
 	}
 }
+
+// What does not last averages out over the minutes: 45 kW of each minute are 20 kW of five,
+// beside which 80 kW stand out; as 45 kW that last they do not.
+func TestRandomUncertaintyAveragesOut(t *testing.T) {
+	for _, tt := range []struct {
+		lasting, random float64
+		want            Verdict
+	}{{0, 45e3, Short}, {45e3, 0, Undecided}, {35e3, 45e3, Undecided}} {
+		j := NewJudge(target)
+		for k := range int64(5) {
+			j.Observe(Minute{Start: k * nanosecondsPerMinute, Whole: true, Duty: 560e3, Uncertainty: tt.lasting, Random: tt.random * tt.random})
+		}
+		if j.Last != tt.want {
+			t.Errorf("%g W lasting and %g W random a minute: verdict %v, want %v", tt.lasting, tt.random, j.Last, tt.want)
+		}
+	}
+}

@@ -35,6 +35,17 @@ type Minute struct {
 	Content           float64 // K, of a vessel
 }
 
+// Doubt returns what leaves the mean duty of the measured time open: the standard
+// uncertainty by what lasts, W, and the variance by what does not, W²; 0 where nothing
+// was measured.
+func (m *Minute) Doubt() (lasting, random float64) {
+	if m.Measured == 0 {
+		return 0, 0
+	}
+	s := float64(m.Measured) / 1e9
+	return math.Sqrt(sumOfSquares(m.Systematic[:])) / s, m.Random / (s * s)
+}
+
 // minuteSum gathers a [Minute]; means are kept as time-weighted sums in units of
 // the figure times seconds.
 type minuteSum struct {
