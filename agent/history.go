@@ -48,27 +48,28 @@ func (h *history) report(ctx context.Context, q Query) (*Report, error) {
 		return nil, err
 	}
 	at := func(ns int64) time.Time { return time.Unix(0, ns).In(zone) }
-	r := &Report{Site: h.site, Zone: zone.String(), By: plan.By.String(), From: at(plan.From), To: at(plan.To), Demand: plan.Demand.Seconds(), Accounted: at(plan.Accounted())}
+	r := &Report{Site: h.site, Zone: zone.String(), By: plan.By.String(), From: at(plan.From), To: at(plan.To), Demand: plan.Demand.Seconds(), Factor: CoverageFactor, Accounted: at(plan.Accounted())}
 	if plan.From >= plan.Until() {
 		return nil, noRecord(r, chosen)
 	}
-	if err := h.fill(ctx, r, plan, ids, chosen, len(q.Loads) > 0); err != nil {
+	if err := h.fill(ctx, r, q, plan, ids, chosen); err != nil {
 		return nil, err
 	}
 	return r, h.addRegisters(r, ids, plan)
 }
 
 // fill puts the chosen loads into the report.
-func (h *history) fill(ctx context.Context, r *Report, plan account.Plan, ids map[string]uint32, chosen []string, byName bool) error {
+func (h *history) fill(ctx context.Context, r *Report, q Query, plan account.Plan, ids map[string]uint32, chosen []string) error {
 	periods := 0
 	for _, name := range chosen {
-		l, err := h.load(ctx, plan, name, ids[name], mostPeriods-periods)
+		source := &records{db: h.db, load: ids[name], plan: plan, brief: q.Demand == 0}
+		l, err := h.load(ctx, name, source, mostPeriods-periods)
 		if err != nil {
 			return err
 		}
 		r.Notes = append(r.Notes, l.notes...)
 		r.Unused += l.unused
-		if l.worthTelling(byName || slices.Contains(h.current, name)) {
+		if l.worthTelling(len(q.Loads) > 0 || slices.Contains(h.current, name)) {
 			r.Loads = append(r.Loads, l.LoadReport)
 			periods += len(l.Periods)
 		}
@@ -140,13 +141,14 @@ func (l *loadAccount) worthTelling(byName bool) bool {
 	return l.begun && (byName || l.Total.Measured > 0)
 }
 
-// load adds up one load.
-func (h *history) load(ctx context.Context, plan account.Plan, name string, id uint32, most int) (l loadAccount, err error) {
+// load adds up the records of one load.
+func (h *history) load(ctx context.Context, name string, source *records, most int) (l loadAccount, err error) {
 	l.Load = name
-	if l.begun, err = anyBefore(h.db, id, plan.From); err != nil {
+	plan := source.plan
+	if l.begun, err = anyBefore(h.db, source.load, plan.From); err != nil {
 		return l, err
 	}
-	source, early := &records{db: h.db, load: id, plan: plan}, l.begun
+	early := l.begun
 	var total account.Total
 	var faults []error
 	for p, err := range account.Periods(plan, source.all(ctx)) {
@@ -154,8 +156,11 @@ func (h *history) load(ctx context.Context, plan account.Plan, name string, id u
 			faults = append(faults, err)
 			continue
 		}
+		if err := h.sharpen(ctx, &p.Demand, plan, source.load); err != nil {
+			return l, err
+		}
 		total.Add(p)
-		if l.begun = l.begun || p.Covered(); !l.begun {
+		if l.begun = l.begun || p.Begun(); !l.begun {
 			continue
 		}
 		if len(l.Periods) == most {
@@ -176,6 +181,22 @@ func (h *history) load(ctx context.Context, plan account.Plan, name string, id u
 	return l, nil
 }
 
+// sharpen finds the window of a peak that so far is known to the hour only, where the
+// minutes of that hour are left and can be read.
+func (h *history) sharpen(ctx context.Context, d *account.Demand, plan account.Plan, id uint32) error {
+	if d.PeakEnd-d.PeakStart <= int64(plan.Demand) {
+		return nil
+	}
+	plan.From, plan.To = d.PeakStart, d.PeakEnd
+	source := &records{db: h.db, load: id, plan: plan, fine: true}
+	for p, err := range account.Periods(plan, source.all(ctx)) {
+		if fine := p.Demand; err == nil && source.whole == 0 && fine.PeakEnd > fine.PeakStart {
+			d.Peak, d.PeakStart, d.PeakEnd, d.PeakCoverage = fine.Peak, fine.PeakStart, fine.PeakEnd, fine.PeakCoverage
+		}
+	}
+	return source.err
+}
+
 // note adds what is remarkable about the records.
 func (l *loadAccount) note(source *records, faults []error) {
 	if l.unused = len(faults); l.unused > 0 {
@@ -184,8 +205,8 @@ func (l *loadAccount) note(source *records, faults []error) {
 	if source.cut > 0 {
 		l.notes = append(l.notes, l.cutNote(source))
 	}
-	if source.whole > 0 && source.plan.Demand != 0 {
-		l.notes = append(l.notes, fmt.Sprintf("%s: of %d hours not all minutes are left; their heat counts, their demand is not known", l.Load, source.whole))
+	if source.mute > 0 && source.plan.Demand != 0 {
+		l.notes = append(l.notes, fmt.Sprintf("%s: of %d hours not all minutes are left; their heat counts, their demand is not known", l.Load, source.mute))
 	}
 }
 

@@ -17,8 +17,44 @@ type Query struct {
 	From, To string
 	By       string        // hour, day or month; empty is day
 	Loads    []string      // empty for all
-	Demand   time.Duration // length of the demand windows; 0 for none
+	Demand   time.Duration // length of the demand windows; 0 for 15 minutes by day and by month and none by hour
 	Zone     string        // IANA name of the time zone; empty for the site's
+}
+
+// NoDemand is the length of demand windows where there are to be none.
+const NoDemand time.Duration = -1
+
+const noDemand = "none"
+
+// SetDemand reads a length of demand windows, or none; what is empty leaves it as it is.
+func (q *Query) SetDemand(text string) error {
+	switch text {
+	case "":
+		return nil
+	case noDemand:
+		q.Demand = NoDemand
+		return nil
+	}
+	d, err := time.ParseDuration(text)
+	switch {
+	case err != nil:
+		return queryErrorf("demand %q is no length of time; write 15m, 30m, 1h or none", text)
+	case !slices.Contains(account.DemandLengths(), d):
+		return queryErrorf("demand %v: allowed are 5m, 10m, 15m, 20m, 30m, 1h and none", d)
+	}
+	q.Demand = d
+	return nil
+}
+
+// windows is the length of the demand windows by a kind of period; 0 for none.
+func (q Query) windows(by account.By) time.Duration {
+	switch {
+	case q.Demand == NoDemand, q.Demand == 0 && by == account.Hour:
+		return 0
+	case q.Demand == 0:
+		return 15 * time.Minute
+	}
+	return q.Demand
 }
 
 // QueryError tells what of a [Query] cannot be answered. Its text begins with the
@@ -40,7 +76,11 @@ func (q Query) values() url.Values {
 	for _, l := range q.Loads {
 		v.Add("load", l)
 	}
-	if q.Demand != 0 {
+	switch q.Demand {
+	case 0:
+	case NoDemand:
+		v.Set("demand", noDemand)
+	default:
 		v.Set("demand", q.Demand.String())
 	}
 	return v
@@ -61,17 +101,12 @@ func queryOf(v url.Values) (q Query, err error) {
 			*field = texts[0]
 		}
 	}
-	if text := *known["demand"]; text != "" {
-		if q.Demand, err = time.ParseDuration(text); err != nil {
-			return q, queryErrorf("demand %q is no length of time; write 15m, 30m or 1h", text)
-		}
-	}
-	return q, nil
+	return q, q.SetDemand(*known["demand"])
 }
 
 // plan is q as the account takes it, event time having come to through.
 func (q Query) plan(zone *time.Location, through int64) (p account.Plan, err error) {
-	p = account.Plan{Through: through, Zone: zone, Demand: q.Demand, By: account.Day}
+	p = account.Plan{Through: through, Zone: zone, By: account.Day}
 	if q.By != "" {
 		kinds := account.Kinds()
 		i := slices.IndexFunc(kinds, func(b account.By) bool { return b.String() == q.By })
@@ -80,8 +115,8 @@ func (q Query) plan(zone *time.Location, through int64) (p account.Plan, err err
 		}
 		p.By = kinds[i]
 	}
-	if q.Demand != 0 && !slices.Contains(account.DemandLengths(), q.Demand) {
-		return p, queryErrorf("demand %v: allowed are 5m, 10m, 15m, 20m, 30m, 1h", q.Demand)
+	if p.Demand = q.windows(p.By); p.Demand != 0 && !slices.Contains(account.DemandLengths(), p.Demand) {
+		return p, queryErrorf("demand %v: allowed are 5m, 10m, 15m, 20m, 30m, 1h and none", p.Demand)
 	}
 	if q.From == "" {
 		return p, queryErrorf("from is missing; write a date such as 2026-12-01")

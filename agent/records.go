@@ -24,9 +24,12 @@ type records struct {
 	db    *store.Store
 	load  uint32
 	plan  account.Plan
+	fine  bool  // minutes where there are any
+	brief bool  // hours also where they do not tell how many windows were measured throughout
 	first int64 // start of the first record yielded; 0 before
 	whole int   // hours yielded where minutes were asked for
 	cut   int   // of those, hours that were cut by the ends of periods or of the plan
+	mute  int   // of those, hours that do not tell their demand
 	err   error // why all ended before its time
 }
 
@@ -47,7 +50,7 @@ func (r *records) all(ctx context.Context) iter.Seq2[account.Record, error] {
 					return
 				}
 			case r.coarse(h):
-				if !r.tell(hourRecord(h), yield) {
+				if !r.tell(r.hourRecord(h), yield) {
 					return
 				}
 			case !r.minutes(h, yield):
@@ -58,13 +61,22 @@ func (r *records) all(ctx context.Context) iter.Seq2[account.Record, error] {
 }
 
 // coarse tells whether the hour serves as it is: it lies whole in one period and in the
-// plan, and there are no shorter windows to tell.
+// plan, and tells all of its demand that is asked for.
 func (r *records) coarse(h store.Hour) bool {
-	if r.plan.Demand != 0 || h.Start < r.plan.From || h.Start+hour > r.plan.Until() {
+	if r.fine || h.Start < r.plan.From || h.Start+hour > r.plan.Until() {
+		return false
+	}
+	if r.plan.Demand != 0 && !(r.quarters(h.Start) && (shortSpan(h.Measured) == hour || r.brief && h.Demand > 0)) {
 		return false
 	}
 	_, end := r.plan.By.Bounds(h.Start, r.plan.Zone)
 	return h.Start+hour <= end
+}
+
+// quarters tells whether the demand windows in the hour from start on are its quarters,
+// whose greatest demand an hour tells.
+func (r *records) quarters(start int64) bool {
+	return r.plan.Demand == 15*time.Minute && r.plan.Windowed(start, start+hour)
 }
 
 // minutes yields those of the hour that the plan asks for. Where not all of them are there
@@ -81,7 +93,7 @@ func (r *records) minutes(h store.Hour, yield func(account.Record, error) bool) 
 		}
 	}
 	if len(found) < int(h.Minutes) {
-		return r.pieces(hourRecord(h), yield)
+		return r.pieces(r.hourRecord(h), yield)
 	}
 	for _, m := range found {
 		if m.Start >= r.plan.From && m.Start < r.plan.Until() && !r.tell(minuteRecord(m), yield) {
@@ -94,10 +106,17 @@ func (r *records) minutes(h store.Hour, yield func(account.Record, error) bool) 
 // pieces yields what of an hour lies in the plan, a record a period.
 func (r *records) pieces(x account.Record, yield func(account.Record, error) bool) bool {
 	r.whole++
-	x.End = min(x.End, r.plan.Accounted()) // what has not come yet is not in it
+	if x.End > r.plan.Accounted() { // what has not come yet is not in it
+		x.End, x.HasDemand = r.plan.Accounted(), false
+	}
 	from, until := max(x.Start, r.plan.From), min(x.End, r.plan.Until())
-	if _, end := r.plan.By.Bounds(from, r.plan.Zone); from > x.Start || until < x.End || end < until {
+	_, end := r.plan.By.Bounds(from, r.plan.Zone)
+	split := from > x.Start || until < x.End || end < until
+	if split {
 		r.cut++
+	}
+	if split || !x.HasDemand {
+		r.mute++
 	}
 	for from < until {
 		_, end := r.plan.By.Bounds(from, r.plan.Zone)
@@ -130,20 +149,46 @@ func (r *records) begins() int64 {
 
 func minuteRecord(m store.Minute) account.Record {
 	return account.Record{
-		Start: m.Start, End: m.Start + minute, Measured: shortSpan(m.Measured),
-		Given: m.Given, Taken: m.Taken, Duty: m.Duty, Lowest: m.DutyMin, Highest: m.DutyMax, Uncertainty: m.DutyUncertainty,
+		Start: m.Start, End: m.Start + minute, Lowest: m.DutyMin, Highest: m.DutyMax,
+		Amounts: account.Amounts{
+			Measured: shortSpan(m.Measured), Bridged: shortSpan(m.Bridged), Latent: shortSpan(m.Latent),
+			Given: m.Given, Taken: m.Taken, BridgedGiven: m.BridgedGiven, BridgedTaken: m.BridgedTaken,
+			Served:      m.Duty * m.Measured,
+			Uncertainty: uncertainty(&m.Systematic, m.Random, m.DutyUncertainty*m.Measured),
+			Witness:     m.Witness, Compared: m.Compared,
+		},
 	}
 }
 
-func hourRecord(h store.Hour) account.Record {
-	r := account.Record{
-		Start: h.Start, End: h.Start + hour, Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged),
-		Given: h.Given, Taken: h.Taken, Duty: h.Duty, Lowest: h.DutyMin, Highest: h.DutyMax,
+// hourRecord is that of an hour, with its demand where the plan's windows are its quarters
+// and the greatest is of one that was measured: a quarter in which nothing was counts as 0.
+func (r *records) hourRecord(h store.Hour) account.Record {
+	x := account.Record{
+		Start: h.Start, End: h.Start + hour, Lowest: h.DutyMin, Highest: h.DutyMax,
+		Amounts: account.Amounts{
+			Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged), Latent: shortSpan(h.Latent),
+			Given: h.Given, Taken: h.Taken, BridgedGiven: h.BridgedGiven, BridgedTaken: h.BridgedTaken,
+			Served:      h.Duty * h.Measured,
+			Uncertainty: uncertainty(&h.Systematic, h.Random, h.HeatUncertainty),
+			Witness:     h.Witness, Compared: h.Compared,
+		},
 	}
-	if h.Measured > 0 {
-		r.Uncertainty = h.HeatUncertainty / h.Measured
+	if r.quarters(h.Start) && (h.Demand > 0 || x.Measured == hour) {
+		x.Demand, x.HasDemand = h.Demand, true
 	}
-	return r
+	return x
+}
+
+// uncertainty is that of a record, in its parts where it has them. Records from before
+// these were kept have only the whole.
+func uncertainty(parts *[store.Shares]float64, variance, whole float64) (u account.Uncertainty) {
+	if *parts == ([store.Shares]float64{}) && variance == 0 {
+		u.Unparted = whole
+		return u
+	}
+	copy(u.Parts[:], parts[:])
+	u.Variance = variance
+	return u
 }
 
 // shortSpan is a short time in ns.

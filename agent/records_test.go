@@ -76,7 +76,7 @@ func TestReportOfARamp(t *testing.T) {
 	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, ramp, "ramp")
 	for _, zone := range []string{"Europe/Dublin", "America/St_Johns", "Asia/Kolkata", "UTC"} {
 		for _, by := range []string{"hour", "day", "month"} {
-			for _, demand := range []time.Duration{0, 15 * time.Minute, time.Hour} {
+			for _, demand := range []time.Duration{NoDemand, 0, 15 * time.Minute, time.Hour} {
 				for _, span := range [][2]int{{0, n}, {60, 1500}, {80, 1999}, {3, 17}} {
 					h := historyIn(t, db, zone)
 					q := Query{By: by, Demand: demand,
@@ -97,7 +97,7 @@ func checkRamp(t *testing.T, h *history, q Query, from, to int) {
 	}
 	l := r.Loads[0]
 	minutes := float64(to - from)
-	if want := rampHeat(from, to); !near12(l.Total.Given, want) || !near12(l.Total.Uncertainty, want/100) || l.Total.Measured != 58*minutes || l.Total.Missing != 2*minutes {
+	if want := rampHeat(from, to); !near12(l.Total.Given, want) || !near12(l.Total.Uncertainty, want/100) || l.Total.Random != 0 || l.Total.Systematic != l.Total.Uncertainty || l.Total.Measured != 58*minutes || l.Total.Missing != 2*minutes {
 		t.Errorf("%+v: total %+v, want %g J", q, l.Total, want)
 	}
 	if l.Begins != nil && from > 0 {
@@ -118,9 +118,65 @@ func checkRamp(t *testing.T, h *history, q Query, from, to int) {
 	if !near12(given, l.Total.Given) || missing != l.Total.Missing || !end.Equal(r.To) {
 		t.Errorf("%+v: periods up to %v with %g J and %g s missing, total %+v", q, end, given, missing, l.Total)
 	}
-	if d := l.Total.Demand; (d != nil) != (q.Demand != 0) || d != nil && d.Peak != nil && !near12(d.Peak.Duty,
-		rampHeat(int(d.Peak.Start.Sub(week)/time.Minute), int(d.Peak.End.Sub(week)/time.Minute))/q.Demand.Seconds()) {
+	length := r.Demand
+	if none := q.Demand == NoDemand || q.Demand == 0 && q.By == "hour"; none != (length == 0) || q.Demand == 0 && !none && length != 900 {
+		t.Errorf("%+v: demand windows of %g s", q, length)
+	}
+	if d := l.Total.Demand; (d != nil) != (length != 0) || d != nil && d.Peak != nil && (d.Peak.End.Sub(d.Peak.Start).Seconds() != length || !near12(d.Peak.Duty,
+		rampHeat(int(d.Peak.Start.Sub(week)/time.Minute), int(d.Peak.End.Sub(week)/time.Minute))/length)) {
 		t.Errorf("%+v: demand %+v", q, d)
+	}
+}
+
+// restless is a duty that jumps from minute to minute, and of which some are missing.
+func restless(_ string, k int) (store.Minute, bool) {
+	duty := 1e3 * float64(k*7919%977-300)
+	return store.Minute{Measured: 60, Given: 60 * max(0, duty), Taken: 60 * max(0, -duty), Duty: duty, DutyMin: duty, DutyMax: duty}, k%701 != 0
+}
+
+// The peak of each day is that of its quarters one by one, though hours serve where they
+// can: by clocks that are off UTC by full hours, halves and quarters, and through a change.
+func TestDemandPeaksAgainstTheQuarters(t *testing.T) {
+	const n = 4 * 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, restless, "restless")
+	quarter := func(at time.Time) (demand, measured float64) {
+		for i := range 15 {
+			k := int(at.Sub(week)/time.Minute) + i
+			if m, ok := restless("", k); ok && k >= 0 && k < n {
+				demand, measured = demand+m.Duty/15, measured+1
+			}
+		}
+		return demand, measured / 15
+	}
+	for _, zone := range []string{"Europe/Dublin", "Asia/Kolkata", "Asia/Kathmandu", "UTC"} {
+		h := historyIn(t, db, zone)
+		r, err := h.report(t.Context(), Query{From: "2026-10-24", Demand: 15 * time.Minute})
+		if err != nil || len(r.Loads[0].Periods) < 4 {
+			t.Fatalf("%s: %v, %+v", zone, err, r)
+		}
+		brief, err := h.report(t.Context(), Query{From: "2026-10-24"})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for i, p := range brief.Loads[0].Periods {
+			if want := r.Loads[0].Periods[i].Demand; *p.Demand.Peak != *want.Peak || p.Demand.Windows != want.Windows || p.Demand.Full > want.Full {
+				t.Errorf("%s, %v: unasked %+v, asked for %+v", zone, p.Start, p.Demand, want)
+			}
+		}
+		for _, p := range append(r.Loads[0].Periods, r.Loads[0].Total) {
+			want, count, full := math.Inf(-1), 0, 0
+			for at := p.AccountedFrom; at.Before(p.AccountedTo); at = at.Add(15 * time.Minute) {
+				demand, measured := quarter(at)
+				if want, count = max(want, demand), count+1; measured == 1 {
+					full++
+				}
+			}
+			k := p.Demand.Peak
+			demand, coverage := quarter(k.Start)
+			if math.Abs(k.Duty-want) > 1e-9*want || math.Abs(demand-want) > 1e-9*want || k.Coverage != coverage || k.End.Sub(k.Start) != 15*time.Minute || p.Demand.Windows != count || p.Demand.Full != full {
+				t.Errorf("%s, %v: %+v of %d windows, %d full; want %g of %d, %d full", zone, p.Start, k, p.Demand.Windows, p.Demand.Full, want, count, full)
+			}
+		}
 	}
 }
 
@@ -141,11 +197,21 @@ func TestReportOfHoursWithoutMinutes(t *testing.T) {
 	}
 	h := historyIn(t, db, "Europe/Dublin")
 	checkRamp(t, &h, Query{From: "2026-10-24", To: "2026-10-26"}, 0, 49*60)
-	r, err := h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25", Demand: 15 * time.Minute})
+	// Its last quarter is the highest of the day: known to the hour, and measured for what
+	// two seconds a minute, all of them taken from it, leave of it.
+	r, err := h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25"})
 	if err != nil {
 		t.Fatal(err)
 	}
-	if l := r.Loads[0]; !near12(l.Total.Given, rampHeat(0, 1440)) || l.Total.Demand.Peak != nil || l.Total.Demand.Windows != 96 ||
+	if k := r.Loads[0].Total.Demand.Peak; len(r.Notes) != 0 || k == nil || !near12(k.Duty, rampHeat(1425, 1440)/900) || !near12(k.Coverage, 1-120./900) ||
+		!k.Start.Equal(week.Add(23*time.Hour)) || !k.End.Equal(week.Add(24*time.Hour)) {
+		t.Errorf("peak %+v, notes %q", k, r.Notes)
+	}
+	r, err = h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25", Demand: 10 * time.Minute})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if l := r.Loads[0]; !near12(l.Total.Given, rampHeat(0, 1440)) || l.Total.Demand.Peak != nil || l.Total.Demand.Windows != 144 ||
 		len(r.Notes) != 1 || !strings.Contains(r.Notes[0], "ramp: of 24 hours not all minutes are left") {
 		t.Errorf("total %+v, notes %q", l.Total, r.Notes)
 	}
@@ -170,7 +236,7 @@ func TestReportOfHoursThatAreCut(t *testing.T) {
 		{"month", 0, n, ""},
 		{"month", 90, 1530, "ramp: of 2 hours by UTC"}, // from the middle of an hour to that of one
 	} {
-		q := Query{By: tt.by, From: week.Add(time.Duration(tt.from) * time.Minute).Format(time.RFC3339), To: week.Add(time.Duration(tt.to) * time.Minute).Format(time.RFC3339)}
+		q := Query{By: tt.by, Demand: NoDemand, From: week.Add(time.Duration(tt.from) * time.Minute).Format(time.RFC3339), To: week.Add(time.Duration(tt.to) * time.Minute).Format(time.RFC3339)}
 		r, err := h.report(t.Context(), q)
 		if err != nil {
 			t.Fatal(err)
@@ -256,7 +322,7 @@ func TestRegistersBesideTheSum(t *testing.T) {
 	for _, tt := range []struct {
 		to   string
 		want *Register
-	}{{"", &Register{5e9, 7, 11, 13}}, {"2027-01-01", &Register{5e9, 7, 11, 13}}, {"2026-10-24T05:00", nil}} {
+	}{{"", &Register{Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}, {"2027-01-01", &Register{Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}, {"2026-10-24T05:00", nil}} {
 		r, err := h.report(t.Context(), Query{From: "2026-10-24", To: tt.to})
 		if err != nil {
 			t.Fatal(err)

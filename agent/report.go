@@ -4,8 +4,13 @@ import (
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/loads"
 	"heatreeve/store"
 )
+
+// CoverageFactor is that of the uncertainties that are shown: about 95 % where many
+// inputs make one up (JCGM 100:2008, 6.3.3).
+const CoverageFactor = 2
 
 // Report is the heat of loads over periods. Its JSON is SI: heat in J, duty in W,
 // times in s, instants as RFC 3339 with the offset of the local clock.
@@ -16,6 +21,8 @@ type Report struct {
 	From   time.Time `json:"from"`
 	To     time.Time `json:"to"`
 	Demand float64   `json:"demand_window_s,omitempty"`
+	// Factor is that of every uncertainty called expanded.
+	Factor float64 `json:"coverage_factor"`
 	// Accounted is how far event time has come in the history.
 	Accounted time.Time    `json:"accounted_to"`
 	Loads     []LoadReport `json:"loads"`
@@ -43,18 +50,43 @@ type PeriodReport struct {
 	End           time.Time `json:"end"`
 	AccountedFrom time.Time `json:"accounted_from"` // of the part that the figures are for
 	AccountedTo   time.Time `json:"accounted_to"`
-	Given         float64   `json:"given_J"`
+	Given         float64   `json:"given_J"` // measured
 	Taken         float64   `json:"taken_J"`
-	Uncertainty   float64   `json:"uncertainty_J"` // standard, of the one less the other
-	Measured      float64   `json:"measured_s"`
-	Bridged       float64   `json:"bridged_s"`
-	Missing       float64   `json:"missing_s"`
-	Coverage      float64   `json:"coverage"`
-	Mean          *float64  `json:"mean_duty_W"`
-	MeanU         *float64  `json:"mean_duty_uncertainty_W"` // standard
-	Lowest        *Extreme  `json:"lowest"`
-	Highest       *Extreme  `json:"highest"`
-	Demand        *Demand   `json:"demand,omitempty"`
+	BridgedGiven  float64   `json:"bridged_given_J"`
+	BridgedTaken  float64   `json:"bridged_taken_J"`
+	// Uncertainty is the standard one of the one less the other, as measured, and
+	// Systematic and Random what it is the root of the sum of squares of.
+	Uncertainty float64  `json:"uncertainty_J"`
+	Systematic  float64  `json:"systematic_uncertainty_J"`
+	Random      float64  `json:"random_uncertainty_J"`
+	Expanded    float64  `json:"expanded_uncertainty_J"`
+	Shares      []Share  `json:"shares"` // largest first
+	Measured    float64  `json:"measured_s"`
+	Bridged     float64  `json:"bridged_s"`
+	Missing     float64  `json:"missing_s"`
+	Latent      float64  `json:"latent_s"` // within measured
+	Coverage    float64  `json:"coverage"`
+	Mean        *float64 `json:"mean_duty_W"`
+	MeanU       *float64 `json:"mean_duty_uncertainty_W"` // standard
+	Lowest      *Extreme `json:"lowest"`
+	Highest     *Extreme `json:"highest"`
+	Demand      *Demand  `json:"demand,omitempty"`
+	Witness     *Witness `json:"witness,omitempty"`
+}
+
+// Share is what one part has in the uncertainty of a period.
+type Share struct {
+	Part        string  `json:"part"`
+	Uncertainty float64 `json:"uncertainty_J"` // standard
+	Fraction    float64 `json:"fraction"`      // of the variance
+}
+
+// Witness is what another meter counted, and the load's heat over the same time. It is
+// there only where there is something to compare.
+type Witness struct {
+	Counted   float64 `json:"counted_J"`
+	Served    float64 `json:"served_J"`
+	Deviation float64 `json:"deviation"` // of the load from it, as a fraction of it
 }
 
 // Extreme is the least or the greatest figure of the duty, and the minute or the hour
@@ -72,7 +104,8 @@ type Demand struct {
 	Peak    *Peak `json:"peak"`
 }
 
-// Peak is the window of the greatest demand.
+// Peak is the window of the greatest demand, or the hour that holds it where its minutes
+// are not left; coverage is then the least that there can be.
 type Peak struct {
 	Duty     float64   `json:"duty_W"`
 	Start    time.Time `json:"start"`
@@ -82,29 +115,37 @@ type Peak struct {
 
 // Register is the total of a load since it was first accounted for.
 type Register struct {
-	Given    float64 `json:"given_J"`
-	Taken    float64 `json:"taken_J"`
-	Measured float64 `json:"measured_s"`
-	Missing  float64 `json:"missing_s"`
+	Given        float64 `json:"given_J"`
+	Taken        float64 `json:"taken_J"`
+	BridgedGiven float64 `json:"bridged_given_J"`
+	BridgedTaken float64 `json:"bridged_taken_J"`
+	Measured     float64 `json:"measured_s"`
+	Bridged      float64 `json:"bridged_s"`
+	Missing      float64 `json:"missing_s"`
 }
 
 func registerOf(r store.Register) *Register {
-	return &Register{r.Given, r.Taken, r.Measured, r.Missing}
+	return &Register{r.Given, r.Taken, r.BridgedGiven, r.BridgedTaken, r.Measured, r.Bridged, r.Missing}
 }
 
 // periodReport tells p by the clock of the plan's zone.
 func periodReport(p *account.Period, plan *account.Plan) PeriodReport {
 	at := func(ns int64) time.Time { return time.Unix(0, ns).In(plan.Zone) }
+	u := &p.Uncertainty
 	r := PeriodReport{
 		Start: at(p.Start), End: at(p.End), AccountedFrom: at(p.From), AccountedTo: at(p.To),
-		Given: p.Given, Taken: p.Taken, Uncertainty: p.Uncertainty,
-		Measured: seconds(p.Measured), Bridged: seconds(p.Bridged), Missing: seconds(p.Missing), Coverage: p.Coverage(),
+		Given: p.Given, Taken: p.Taken, BridgedGiven: p.BridgedGiven, BridgedTaken: p.BridgedTaken,
+		Uncertainty: u.Standard(), Systematic: u.Systematic(), Random: u.Random(), Expanded: CoverageFactor * u.Standard(), Shares: shares(u),
+		Measured: seconds(p.Measured), Bridged: seconds(p.Bridged), Missing: seconds(p.Missing), Latent: seconds(p.Latent), Coverage: p.Coverage(),
 	}
-	if p.Covered() {
-		mean, u := p.Mean()
-		r.Mean, r.MeanU = &mean, &u
+	if p.Measured > 0 {
+		mean, meanU := p.Mean()
+		r.Mean, r.MeanU = &mean, &meanU
 		r.Lowest = &Extreme{p.Lowest.Duty, at(p.Lowest.Start), at(p.Lowest.End)}
 		r.Highest = &Extreme{p.Highest.Duty, at(p.Highest.Start), at(p.Highest.End)}
+	}
+	if deviation, ok := p.Deviation(); ok {
+		r.Witness = &Witness{p.Witness, p.Compared, deviation}
 	}
 	if d := p.Demand; plan.Demand != 0 {
 		r.Demand = &Demand{Windows: d.Windows, Full: d.Full}
@@ -113,4 +154,21 @@ func periodReport(p *account.Period, plan *account.Plan) PeriodReport {
 		}
 	}
 	return r
+}
+
+func shares(u *account.Uncertainty) []Share {
+	all := []Share{}
+	for _, s := range u.Shares() {
+		all = append(all, Share{s.Name, s.Uncertainty, s.Fraction})
+	}
+	return all
+}
+
+// ShareNames lists what an uncertainty may be made of, in a fixed order.
+func ShareNames() []string {
+	var all []string
+	for p := range loads.Parts {
+		all = append(all, p.String())
+	}
+	return append(all, account.RandomShare, account.UnpartedShare)
 }

@@ -58,7 +58,13 @@ func TestReportPage(t *testing.T) {
 
 // Queries survive the way to the agent.
 func TestQueryRoundTrip(t *testing.T) {
-	q := Query{From: "2026-10-24", To: "2026-10-25T06:00+01:00", By: "hour", Loads: []string{"a b", "c&d=e"}, Demand: 90 * time.Minute, Zone: "Asia/Kolkata"}
+	for _, demand := range []time.Duration{0, NoDemand, 20 * time.Minute} {
+		checkRoundTrip(t, Query{From: "2026-10-24", To: "2026-10-25T06:00+01:00", By: "hour", Loads: []string{"a b", "c&d=e"}, Demand: demand, Zone: "Asia/Kolkata"})
+	}
+}
+
+func checkRoundTrip(t *testing.T, q Query) {
+	t.Helper()
 	v, err := url.ParseQuery(q.values().Encode())
 	if err != nil {
 		t.Fatal(err)

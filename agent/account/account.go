@@ -13,21 +13,43 @@ import (
 	"time"
 )
 
-// Record is what a load did from Start to End. The time in it that is neither
-// measured nor bridged is missing.
+// Amounts are what adds up: over records to a period, and over periods to a longer one.
+type Amounts struct {
+	Measured, Bridged int64   // ns; what is neither is missing
+	Latent            int64   // ns within Measured whose duty is the sensible part only
+	Given, Taken      float64 // J over the measured time, not below zero
+	// BridgedGiven and BridgedTaken are the heat that a straight line puts into the
+	// bridged time, J. They are in no other figure.
+	BridgedGiven, BridgedTaken float64
+	Served                     float64 // J over the measured time, given less taken: positive in the load's service
+	Uncertainty                Uncertainty
+	// Witness is what the load's witness counted, J, in spans that ended here and were
+	// measured throughout, and Compared what the load served in the same spans.
+	Witness, Compared float64
+}
+
+// Deviation is how far the load is above its witness, as a fraction of what that
+// counted; ok tells whether there is anything to compare.
+func (a *Amounts) Deviation() (fraction float64, ok bool) {
+	if a.Witness <= 0 {
+		return 0, false
+	}
+	return a.Compared/a.Witness - 1, true
+}
+
+// Record is what a load did from Start to End.
 type Record struct {
-	Start, End        int64
-	Measured, Bridged int64
-	Given, Taken      float64 // J over the measured and bridged time, not below zero
-	Duty              float64 // mean over that time, W, positive in the load's service
-	Lowest, Highest   float64 // least and greatest figure of the duty in it, W
-	Uncertainty       float64 // mean standard uncertainty of the duty over that time, W
+	Start, End int64
+	Amounts
+	Lowest, Highest float64 // least and greatest figure of the duty, W; only where anything was measured
+	// Demand is the greatest demand of the windows that make up the record, W, where it
+	// is longer than one; only with HasDemand. Of a record that was not measured
+	// throughout it must not be that of a window in which nothing was.
+	Demand    float64
+	HasDemand bool
 
 	seen span
 }
-
-// covered is the time that the heat stands for, in s.
-func (r *Record) covered() float64 { return float64(r.Measured+r.Bridged) / 1e9 }
 
 // check tells what is wrong with r in itself.
 func (r *Record) check() error {
@@ -36,16 +58,23 @@ func (r *Record) check() error {
 		value float64
 		least float64
 	}{
-		{"heat given", r.Given, 0}, {"heat taken", r.Taken, 0}, {"uncertainty", r.Uncertainty, 0},
-		{"duty", r.Duty, math.Inf(-1)}, {"lowest duty", r.Lowest, math.Inf(-1)}, {"highest duty", r.Highest, math.Inf(-1)},
+		{"heat given", r.Given, 0}, {"heat taken", r.Taken, 0}, {"heat served", r.Served, math.Inf(-1)},
+		{"bridged heat given", r.BridgedGiven, 0}, {"bridged heat taken", r.BridgedTaken, 0},
+		{"uncertainty", r.Uncertainty.Unparted, 0}, {"random variance", r.Uncertainty.Variance, 0}, {"uncertainty", r.Uncertainty.Standard(), 0},
+		{"lowest duty", r.Lowest, math.Inf(-1)}, {"highest duty", r.Highest, math.Inf(-1)}, {"demand", r.Demand, math.Inf(-1)},
+		{"heat of the witness", r.Witness, 0}, {"heat compared with the witness", r.Compared, math.Inf(-1)},
 	} {
 		if math.IsNaN(f.value) || math.IsInf(f.value, 0) || f.value < f.least {
 			return fmt.Errorf("record at %s: %s is %g", stamp(r.Start), f.name, f.value)
 		}
 	}
-	if r.Measured < 0 || r.Bridged < 0 || r.Measured+r.Bridged > r.End-r.Start || r.End <= r.Start {
+	length := r.End - r.Start
+	if r.Measured < 0 || r.Bridged < 0 || r.Measured > length || r.Bridged > length-r.Measured || length <= 0 {
 		return fmt.Errorf("record at %s: %v measured and %v bridged of %v", stamp(r.Start),
-			time.Duration(r.Measured), time.Duration(r.Bridged), time.Duration(r.End-r.Start))
+			time.Duration(r.Measured), time.Duration(r.Bridged), time.Duration(length))
+	}
+	if r.Latent < 0 || r.Latent > r.Measured {
+		return fmt.Errorf("record at %s: %v latent of %v measured", stamp(r.Start), time.Duration(r.Latent), time.Duration(r.Measured))
 	}
 	return nil
 }
@@ -58,38 +87,31 @@ type Period struct {
 	// From and To bound the part of it that is accounted for: what was asked for,
 	// and how far event time has come.
 	From, To int64
-	// Measured, Bridged and Missing add up to To − From.
-	Measured, Bridged, Missing int64
-	Given, Taken               float64 // J
-	Served                     float64 // J, the one less the other: positive in the load's service
-	// Uncertainty is the standard uncertainty of Served in J: the sum of u·dt. It takes
-	// the whole uncertainty u of the duty as systematic, the same throughout the period,
-	// which is the safe side: what part of it is random would grow with the root of the
-	// time only.
-	Uncertainty     float64
-	Lowest, Highest Extreme // only where Covered
+	Amounts
+	Missing         int64   // with Measured and Bridged, To − From
+	Lowest, Highest Extreme // only where anything was measured
 	Demand          Demand
 }
 
-// Covered tells whether any of the period was measured or bridged.
-func (p *Period) Covered() bool { return p.Measured+p.Bridged > 0 }
+// Begun tells whether the load had begun: any of the period was measured or bridged.
+func (p *Period) Begun() bool { return p.Measured+p.Bridged > 0 }
 
-// Coverage is the measured and bridged part of the accounted time, 0 to 1.
+// Coverage is the measured part of the accounted time, 0 to 1.
 func (p *Period) Coverage() float64 {
 	if p.To == p.From {
 		return 0
 	}
-	return float64(p.Measured+p.Bridged) / float64(p.To-p.From)
+	return float64(p.Measured) / float64(p.To-p.From)
 }
 
-// Mean is the mean duty in W over the covered time, and its standard uncertainty;
-// both are 0 where nothing is covered.
+// Mean is the mean duty in W over the measured time, and its standard uncertainty;
+// both are 0 where nothing was measured.
 func (p *Period) Mean() (duty, uncertainty float64) {
-	if !p.Covered() {
+	if p.Measured == 0 {
 		return 0, 0
 	}
-	s := float64(p.Measured+p.Bridged) / 1e9
-	return p.Served / s, p.Uncertainty / s
+	s := float64(p.Measured) / 1e9
+	return p.Served / s, p.Uncertainty.Standard() / s
 }
 
 // Whole tells whether all of the period is accounted for.
@@ -99,19 +121,4 @@ func (p *Period) Whole() bool { return p.From == p.Start && p.To == p.End }
 type Extreme struct {
 	Duty       float64 // W
 	Start, End int64
-}
-
-// Demand tells of the demand windows of a period: those of one length, aligned to
-// the local clock, that lie whole in its accounted part. A change of the clock ends
-// a window before its time; it then counts with the length that it has.
-type Demand struct {
-	Windows int // how many there are
-	Full    int // how many of them were covered throughout
-	// Peak is the greatest demand of a window that was covered at all, from
-	// PeakStart to PeakEnd. The demand is the heat served over the length of the
-	// window. Where it is not covered throughout, PeakCoverage < 1, the heat of the
-	// missing time is not in it.
-	Peak               float64 // W
-	PeakStart, PeakEnd int64   // equal where no window was covered
-	PeakCoverage       float64
 }

@@ -7,6 +7,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"heatreeve/agent/loads"
 )
 
 func wantError(t *testing.T, what string, err error, want string) {
@@ -43,8 +45,10 @@ func collect(t interface{ Fatal(...any) }, p Plan, records []Record) []Period {
 
 // record is a minute of one duty, in the load's service, measured for some seconds.
 func record(start int64, duty, uncertainty float64, seconds int64) Record {
-	r := Record{Start: start, End: start + minute, Measured: seconds * int64(time.Second), Duty: duty, Lowest: duty, Highest: duty, Uncertainty: uncertainty}
-	r.Given, r.Taken = max(0, duty)*float64(seconds), max(0, -duty)*float64(seconds)
+	r := Record{Start: start, End: start + minute, Lowest: duty, Highest: duty}
+	r.Measured, r.Served = seconds*int64(time.Second), duty*float64(seconds)
+	r.Given, r.Taken = max(0, r.Served), max(0, -r.Served)
+	r.Uncertainty.Unparted = uncertainty * float64(seconds)
 	return r
 }
 
@@ -73,7 +77,7 @@ func TestRampOverALongDay(t *testing.T) {
 	want := d * 60 * n * (n - 1) / 2
 	near(t, "heat given", p.Given, want, 1e-15)
 	near(t, "heat served", p.Served, want, 1e-15)
-	near(t, "uncertainty", p.Uncertainty, 0.01*want, 1e-15)
+	near(t, "uncertainty", p.Uncertainty.Standard(), 0.01*want, 1e-15)
 	mean, u := p.Mean()
 	near(t, "mean duty", mean, d*(n-1)/2, 1e-15)
 	near(t, "its uncertainty", u, 0.01*d*(n-1)/2, 1e-15)
@@ -109,7 +113,7 @@ func TestStepsWithGaps(t *testing.T) {
 	near(t, "heat given", p.Given, 900e3*300+500e3*450, 0)
 	near(t, "heat taken", p.Taken, 200e3*1800, 0)
 	near(t, "heat served", p.Served, p.Given-p.Taken, 1e-15)
-	near(t, "uncertainty", p.Uncertainty, 9e3*300+5e3*450+2e3*1800, 1e-15)
+	near(t, "uncertainty", p.Uncertainty.Standard(), 9e3*300+5e3*450+2e3*1800, 1e-15)
 	if s := int64(time.Second); p.Measured != 2550*s || p.Missing != 1050*s || p.Bridged != 0 {
 		t.Errorf("measured %d, missing %d", p.Measured/s, p.Missing/s)
 	}
@@ -136,7 +140,7 @@ func TestPeriodsInPart(t *testing.T) {
 	if p[0].Demand.Windows != 13 || p[1].Demand.Windows != 9 || p[0].Demand.PeakEnd != 0 || p[0].Demand.Full != 0 {
 		t.Errorf("windows %+v, %+v; want 13 and 9, and no peak of a window that is cut", p[0].Demand, p[1].Demand)
 	}
-	if p[0].Missing != p[0].To-p[0].From-minute || p[1].Missing != p[1].To-p[1].From || p[1].Covered() || p[1].Coverage() != 0 {
+	if p[0].Missing != p[0].To-p[0].From-minute || p[1].Missing != p[1].To-p[1].From || p[1].Begun() || p[1].Coverage() != 0 {
 		t.Errorf("missing %v, %v", p[0].Missing, p[1].Missing)
 	}
 	if late := collect(t, Plan{From: to, To: to + hour, Through: through, By: Hour, Zone: zone}, nil); len(late) != 0 {
@@ -156,7 +160,17 @@ func TestWrongRecordsAreNotCounted(t *testing.T) {
 	}{
 		{wrong(func(r *Record) { r.Given = math.NaN() }), nil, "heat given is NaN"},
 		{wrong(func(r *Record) { r.Taken = -1 }), nil, "heat taken is -1"},
-		{wrong(func(r *Record) { r.Duty = math.Inf(1) }), nil, "duty is +Inf"},
+		{wrong(func(r *Record) { r.Served = math.Inf(1) }), nil, "heat served is +Inf"},
+		{wrong(func(r *Record) { r.Lowest = math.NaN() }), nil, "lowest duty is NaN"},
+		{wrong(func(r *Record) { r.BridgedTaken = -1 }), nil, "bridged heat taken is -1"},
+		{wrong(func(r *Record) { r.Uncertainty.Parts[loads.PartFlow] = math.NaN() }), nil, "uncertainty is NaN"},
+		{wrong(func(r *Record) { r.Uncertainty.Variance = -1 }), nil, "random variance is -1"},
+		{wrong(func(r *Record) { r.Uncertainty.Unparted = -1 }), nil, "uncertainty is -1"},
+		{wrong(func(r *Record) { r.Witness = -1 }), nil, "heat of the witness is -1"},
+		{wrong(func(r *Record) { r.Demand, r.HasDemand = math.Inf(-1), true }), nil, "demand is -Inf"},
+		{wrong(func(r *Record) { r.Bridged = 1 }), nil, "1m0s measured and 1ns bridged of 1m0s"},
+		{wrong(func(r *Record) { r.Latent = minute + 1 }), nil, "latent of 1m0s measured"},
+		{wrong(func(r *Record) { r.Measured, r.Bridged = math.MaxInt64, math.MaxInt64 }), nil, "bridged of 1m0s"},
 		{wrong(func(r *Record) { r.Measured = 61 * int64(time.Second) }), nil, "1m1s measured"},
 		{wrong(func(r *Record) { r.End = r.Start; r.Measured = 0 }), nil, "of 0s"},
 		{wrong(func(r *Record) { r.Start -= hour; r.End -= hour }), nil, "is before"},

@@ -8,6 +8,8 @@ import (
 	"time"
 
 	"pgregory.net/rapid"
+
+	"heatreeve/agent/loads"
 )
 
 // history draws minutes of some days around a change of the clock, with gaps.
@@ -24,6 +26,10 @@ func history(t *rapid.T) (p Plan, records []Record) {
 		random = random*6364136223846793005 + 1442695040888963407 // Knuth's MMIX
 		if a := int64(random >> 33); a%step < 3 {
 			r := record(x, float64(a%2_000_003)-500e3, float64(a%9973), 1+a%60)
+			r.Bridged, r.Latent = minute-r.Measured, r.Measured/3
+			r.BridgedGiven, r.BridgedTaken = float64(a%1009), float64(a%1013)
+			r.Uncertainty.Parts[loads.PartFlow], r.Uncertainty.Parts[loads.PartDensity] = float64(a%1999)-999, 1/float64(1+a%83)
+			r.Uncertainty.Variance, r.Witness, r.Compared = float64(a%7919), float64(a%6007), float64(a%5003)-99
 			records = append(records, r)
 		}
 	}
@@ -76,8 +82,15 @@ func checkTotal(t *rapid.T, by By, got, month Period, records []Record) {
 	}{
 		{"given", got.Given, func(r *Record) float64 { return r.Given }},
 		{"taken", got.Taken, func(r *Record) float64 { return r.Taken }},
-		{"served", got.Served, func(r *Record) float64 { return r.Duty * r.covered() }},
-		{"uncertainty", got.Uncertainty, func(r *Record) float64 { return r.Uncertainty * r.covered() }},
+		{"served", got.Served, func(r *Record) float64 { return r.Served }},
+		{"bridged heat given", got.BridgedGiven, func(r *Record) float64 { return r.BridgedGiven }},
+		{"bridged heat taken", got.BridgedTaken, func(r *Record) float64 { return r.BridgedTaken }},
+		{"flow's part", got.Uncertainty.Parts[loads.PartFlow], func(r *Record) float64 { return r.Uncertainty.Parts[loads.PartFlow] }},
+		{"density's part", got.Uncertainty.Parts[loads.PartDensity], func(r *Record) float64 { return r.Uncertainty.Parts[loads.PartDensity] }},
+		{"variance", got.Uncertainty.Variance, func(r *Record) float64 { return r.Uncertainty.Variance }},
+		{"uncertainty without parts", got.Uncertainty.Unparted, func(r *Record) float64 { return r.Uncertainty.Unparted }},
+		{"witness", got.Witness, func(r *Record) float64 { return r.Witness }},
+		{"compared", got.Compared, func(r *Record) float64 { return r.Compared }},
 	} {
 		want := exact(records, f.of)
 		scale := exact(records, func(r *Record) float64 { return math.Abs(f.of(r)) })
@@ -85,7 +98,10 @@ func checkTotal(t *rapid.T, by By, got, month Period, records []Record) {
 			t.Fatalf("by %v: %s %.17g, the records hold %.17g", by, f.what, f.got, want)
 		}
 	}
-	got.Given, got.Taken, got.Served, got.Uncertainty = month.Given, month.Taken, month.Served, month.Uncertainty
+	if got.Measured != month.Measured || got.Bridged != month.Bridged || got.Latent != month.Latent {
+		t.Fatalf("by %v: %d, %d and %d ns, by month %d, %d and %d", by, got.Measured, got.Bridged, got.Latent, month.Measured, month.Bridged, month.Latent)
+	}
+	got.Amounts = month.Amounts
 	got.Start, got.End = month.Start, month.End
 	if got != month {
 		t.Fatalf("by %v: %+v,\nby month: %+v", by, got, month)
@@ -121,7 +137,7 @@ func TestDemandByTheWallClock(t *testing.T) {
 		}
 		for i := range records {
 			if m := wall(records[i].Start); minutes[m] > 0 {
-				served[m] += records[i].Duty * records[i].covered()
+				served[m] += records[i].Served
 				covered[m] += records[i].Measured
 			}
 		}
@@ -157,10 +173,12 @@ func TestRecordsByTheHour(t *testing.T) {
 		minutes = append(minutes, record(x, float64(x/minute%977)*1e3, 5e3, 60))
 	}
 	for some := range slices.Chunk(minutes, 60) {
-		h := Record{Start: some[0].Start, End: some[59].End, Measured: hour, Uncertainty: 5e3, Lowest: math.Inf(1), Highest: math.Inf(-1)}
+		h := Record{Start: some[0].Start, End: some[59].End, Lowest: math.Inf(1), Highest: math.Inf(-1)}
 		for _, r := range some {
+			h.Measured += r.Measured
 			h.Given += r.Given
-			h.Duty += r.Duty / 60
+			h.Served += r.Served
+			h.Uncertainty.Unparted += r.Uncertainty.Unparted
 			h.Lowest, h.Highest = min(h.Lowest, r.Lowest), max(h.Highest, r.Highest)
 		}
 		hours = append(hours, h)
@@ -172,12 +190,62 @@ func TestRecordsByTheHour(t *testing.T) {
 	}
 	for i := range fine {
 		near(t, "heat by the hour", coarse[i].Given, fine[i].Given, 1e-14)
-		near(t, "uncertainty by the hour", coarse[i].Uncertainty, fine[i].Uncertainty, 1e-14)
+		near(t, "uncertainty by the hour", coarse[i].Uncertainty.Standard(), fine[i].Uncertainty.Standard(), 1e-14)
 		if coarse[i].Measured != fine[i].Measured || coarse[i].Highest.Duty != fine[i].Highest.Duty {
 			t.Errorf("by the hour %+v, by the minute %+v", coarse[i], fine[i])
 		}
 		if fine[i].Demand.Full != fine[i].Demand.Windows || coarse[i].Demand != (Demand{Windows: fine[i].Demand.Windows}) {
 			t.Errorf("half hours by the minute %+v, by the hour %+v; an hour does not tell them", fine[i].Demand, coarse[i].Demand)
+		}
+	}
+}
+
+// Hours that tell their greatest quarter give the demand that their minutes give, to the
+// hour, wherever the clock's offset is one of full quarters; also through its changes.
+func TestDemandOfHours(t *testing.T) {
+	for name, begin := range map[string]string{"Europe/Dublin": "2026-10-24T00:00Z", "Asia/Kolkata": "2026-06-01T00:00Z", "Asia/Kathmandu": "2026-06-01T00:00Z", "Australia/Lord_Howe": "2026-10-03T00:00Z"} {
+		zone, from := place(t, name), at(t, begin)
+		var minutes, hours []Record
+		for x := from; x < from+49*hour; x += minute {
+			minutes = append(minutes, record(x, float64(x/minute*7919%977)*1e3-400e3, 0, 60))
+		}
+		for some := range slices.Chunk(minutes, 60) {
+			h := Record{Start: some[0].Start, End: some[59].End, Demand: math.Inf(-1), HasDemand: true}
+			for quarter := range slices.Chunk(some, 15) {
+				served := 0.0
+				for _, r := range quarter {
+					served += r.Served
+				}
+				h.Demand = max(h.Demand, served/900)
+			}
+			for _, r := range some {
+				h.Measured += r.Measured
+				h.Served += r.Served
+			}
+			hours = append(hours, h)
+		}
+		p := Plan{From: from, To: from + 49*hour, Through: from + 49*hour, By: Month, Zone: zone, Demand: 15 * time.Minute}
+		fine, coarse := collect(t, p, minutes)[0].Demand, collect(t, p, hours)[0].Demand
+		if fine.Windows != 4*49 || fine.Full != fine.Windows || coarse.Full != coarse.Windows || coarse.Windows != fine.Windows || math.Abs(coarse.Peak-fine.Peak) > 1e-9*fine.Peak ||
+			coarse.PeakStart != fine.PeakStart-fine.PeakStart%hour || coarse.PeakEnd != coarse.PeakStart+hour || coarse.PeakCoverage != 1 {
+			t.Errorf("%s: by the minute %+v, by the hour %+v", name, fine, coarse)
+		}
+	}
+}
+
+// An hour with gaps tells of its windows only what they were measured at least.
+func TestDemandOfAnHourWithGaps(t *testing.T) {
+	from := at(t, "2026-06-01T10:00Z")
+	for _, tt := range []struct {
+		measured int64
+		coverage float64
+		full     int
+	}{{60 * minute, 1, 4}, {57 * minute, 0.8, 0}, {45 * minute, 0, 0}, {20 * minute, 0, 0}} {
+		r := Record{Start: from, End: from + hour, Demand: 5e3, HasDemand: true}
+		r.Measured = tt.measured
+		d := collect(t, Plan{From: from, To: from + hour, Through: from + hour, By: Hour, Zone: time.UTC, Demand: 15 * time.Minute}, []Record{r})[0].Demand
+		if d != (Demand{Windows: 4, Full: tt.full, Peak: 5e3, PeakStart: from, PeakEnd: from + hour, PeakCoverage: tt.coverage}) {
+			t.Errorf("%v measured: %+v", time.Duration(tt.measured), d)
 		}
 	}
 }

@@ -17,14 +17,29 @@ func (r Record) Cut(from, to int64) Record {
 	upTo := func(x, t int64) int64 {
 		return int64(math.Floor(float64(x) * (float64(t-r.Start) / float64(r.End-r.Start))))
 	}
-	covered := min(to-from, upTo(r.Measured+r.Bridged, to)-upTo(r.Measured+r.Bridged, from)) // rounding may add 1 ns
+	between := func(x int64) int64 { return upTo(x, to) - upTo(x, from) }
 	part := r
 	part.Start, part.End = from, to
-	part.Measured = min(covered, upTo(r.Measured, to)-upTo(r.Measured, from))
+	part.Demand, part.HasDemand = 0, false
+	covered := min(to-from, between(r.Measured+r.Bridged)) // rounding may add 1 ns
+	part.Measured = min(covered, between(r.Measured))
 	part.Bridged = covered - part.Measured
-	share := float64(to-from) / float64(r.End-r.Start)
-	part.Given, part.Taken = r.Given*share, r.Taken*share
+	part.Latent = min(part.Measured, between(r.Latent))
+	part.scale(float64(to-from) / float64(r.End-r.Start))
 	return part
+}
+
+// scale leaves a share of the heats and of their uncertainty.
+func (a *Amounts) scale(share float64) {
+	for _, x := range [...]*float64{
+		&a.Given, &a.Taken, &a.BridgedGiven, &a.BridgedTaken, &a.Served, &a.Witness, &a.Compared,
+		&a.Uncertainty.Variance, &a.Uncertainty.Unparted,
+	} {
+		*x *= share
+	}
+	for i := range a.Uncertainty.Parts {
+		a.Uncertainty.Parts[i] *= share
+	}
 }
 
 // span is where the extremes of a cut record were seen; zero for one that is whole.

@@ -5,8 +5,6 @@ import (
 	"iter"
 	"slices"
 	"time"
-
-	"heatreeve/agent/loads"
 )
 
 // Plan says what an account is to hold.
@@ -56,7 +54,8 @@ func (p *Plan) stamp(t int64) string {
 // Records must come in the order of time and each lie whole in one period. What does
 // not is yielded as an error and not counted, and so is an error of records itself; the
 // account goes on unless the caller stops. A record that does not lie whole in one
-// demand window covers none, and neither does one that is cut.
+// demand window is in none unless it has a demand of its own, and neither is one that is
+// cut.
 func Periods(p Plan, records iter.Seq2[Record, error]) iter.Seq2[Period, error] {
 	return func(yield func(Period, error) bool) {
 		f := fold{plan: p, last: p.From}
@@ -90,19 +89,18 @@ func Periods(p Plan, records iter.Seq2[Record, error]) iter.Seq2[Period, error] 
 
 // fold is a period in the making.
 type fold struct {
-	plan                         Plan
-	last                         int64 // end of the last record
-	period                       Period
-	given, taken, served, spread loads.Sum
-	window                       demandWindow
+	plan   Plan
+	last   int64 // end of the last record
+	period Period
+	sums   sums
+	window demandWindow
 }
 
 // begin starts the period that holds t.
 func (f *fold) begin(t int64) {
 	start, end := f.plan.By.Bounds(t, f.plan.Zone)
 	f.period = Period{Start: start, End: end, From: max(start, f.plan.From), To: min(end, f.plan.Until())}
-	f.given, f.taken, f.served, f.spread = loads.Sum{}, loads.Sum{}, loads.Sum{}, loads.Sum{}
-	f.window = demandWindow{}
+	f.sums, f.window = sums{}, demandWindow{}
 }
 
 // check tells what keeps r out of the account.
@@ -125,23 +123,11 @@ func (f *fold) add(r *Record) error {
 		f.demand(r)
 	}
 	f.last = r.End
-	s := r.covered()
-	if s == 0 {
-		return nil
+	if r.Measured > 0 {
+		start, end := r.holder()
+		p.extremes(f.sums.measured > 0, Extreme{r.Lowest, start, end}, Extreme{r.Highest, start, end})
 	}
-	start, end := r.holder()
-	if !p.Covered() || r.Lowest < p.Lowest.Duty {
-		p.Lowest = Extreme{r.Lowest, start, end}
-	}
-	if !p.Covered() || r.Highest > p.Highest.Duty {
-		p.Highest = Extreme{r.Highest, start, end}
-	}
-	p.Measured += r.Measured
-	p.Bridged += r.Bridged
-	f.given.Add(r.Given)
-	f.taken.Add(r.Taken)
-	f.served.Add(r.Duty * s)
-	f.spread.Add(r.Uncertainty * s)
+	f.sums.add(&r.Amounts)
 	return nil
 }
 
@@ -149,8 +135,8 @@ func (f *fold) add(r *Record) error {
 func (f *fold) close() Period {
 	f.settle()
 	p := f.period
+	p.Amounts = f.sums.amounts()
 	p.Missing = p.To - p.From - p.Measured - p.Bridged
-	p.Given, p.Taken, p.Served, p.Uncertainty = f.given.Value(), f.taken.Value(), f.served.Value(), f.spread.Value()
 	if f.plan.Demand != 0 {
 		p.Demand.Windows = windows(&p, int64(f.plan.Demand), f.plan.Zone)
 	}

@@ -16,23 +16,32 @@ or a month (2026-12) by the clock of the plant, a local time (2026-12-31T06:00),
 one with its offset to UTC (2026-12-31T06:00+01:00). --to is the end and not in the
 report any more; without it, the report goes as far as the history.
 
-Uncertainties are those of given less taken, as if the duty's were the same
-throughout: nothing of it averages out, within a period or between them. Table
-and csv show them twice the standard one; json is SI, and the standard one.
-Missing time has no heat in it. csv has no line of totals, and its notes go to
+Uncertainties are those of given less taken as measured, with the coverage factor 2
+in table and csv; json is SI, and has the standard one too. What lasts, such as the
+error of an instrument, does not average out of them, what is random does; --shares
+shows both, and what each input has in them, which json always has. Heat that was
+bridged is told apart, and in no other figure; missing time has no heat in it. By day
+and by month the peak demand is that of 15 minutes. csv has no line of totals, and its notes go to
 stderr. A load whose name a spreadsheet would take for a formula (= + - @ first) has
 an apostrophe before it in csv. A report that had to leave out damaged records ends
 with status 1.
 `
 
-var formats = map[string]func(io.Writer, *agent.Report) error{
+// details are what a report may show beyond its usual columns.
+type details struct {
+	shares bool // what the uncertainty is made of
+}
+
+var formats = map[string]func(io.Writer, *agent.Report, details) error{
 	"table": reportTable,
 	"csv":   reportCSV,
-	"json":  func(w io.Writer, r *agent.Report) error { return printJSON(w, r) },
+	"json":  func(w io.Writer, r *agent.Report, _ details) error { return printJSON(w, r) },
 }
 
 func runReport(ctx context.Context, c *call) error {
 	var q agent.Query
+	var d details
+	var demand string
 	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
 	c.flags.StringVar(&q.From, "from", "", "`DATE` at which the report begins")
 	c.flags.StringVar(&q.To, "to", "", "`DATE` at which it ends")
@@ -41,7 +50,8 @@ func runReport(ctx context.Context, c *call) error {
 		q.Loads = append(q.Loads, name)
 		return nil
 	})
-	c.flags.DurationVar(&q.Demand, "demand", 0, "show the peak demand over windows of `LENGTH`: 5m, 10m, 15m, 20m, 30m or 1h")
+	c.flags.StringVar(&demand, "demand", "", "show the peak demand over windows of `LENGTH`: 5m, 10m, 15m, 20m, 30m, 1h or none; without it, 15m by day and by month")
+	c.flags.BoolVar(&d.shares, "shares", false, "show what the uncertainty is made of, largest first")
 	format := c.flags.String("format", "table", "`table|csv|json`")
 	c.flags.StringVar(&q.Zone, "zone", "", "IANA `NAME` of the time zone, such as Europe/Dublin; without it, that of the history or the site file")
 	file := c.flags.String("site", "", "site `FILE` whose time zone to go by")
@@ -50,6 +60,9 @@ func runReport(ctx context.Context, c *call) error {
 	}
 	if *data == "" || q.From == "" {
 		return wrongf("heatreeve report: --data and --from must be given; see heatreeve report --help")
+	}
+	if err := q.SetDemand(demand); err != nil {
+		return wrongf("heatreeve report: --%w", err)
 	}
 	write := formats[*format]
 	if write == nil {
@@ -70,7 +83,7 @@ func runReport(ctx context.Context, c *call) error {
 	case err != nil:
 		return err
 	}
-	if err := write(c.stdout, r); err != nil {
+	if err := write(c.stdout, r, d); err != nil {
 		return err
 	}
 	return tellReport(c.stderr, r, *format)

@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"math"
 	"path/filepath"
+	"regexp"
 	"slices"
 	"strconv"
 	"strings"
@@ -23,15 +24,16 @@ func TestReportTable(t *testing.T) {
 		args string
 		want []string
 	}{
-		{"--from 2026-10-25 --to 2026-10-26 --load dryer-air --by hour", []string{
+		{"--from 2026-10-25 --to 2026-10-26 --load dryer-air --by hour --shares", []string{
 			"Brackwater Creamery", "dryer-air, 2026-10-25 00:00 +01:00 to 2026-10-26 00:00 +00:00, Europe/Dublin",
-			"2026-10-25 01:00 +01:00 ", "2026-10-25 01:00 +00:00 ", "0 %  1:00:00", "\ntotal ", "Highest: the highest figure"}},
-		{"--from 2026-10-24T06:30 --by day --demand 15m", []string{
+			"2026-10-25 01:00 +01:00 ", "2026-10-25 01:00 +00:00 ", "0 %  1:00:00", "\ntotal ", "Highest: the highest figure", "not told apart 100 %", "Shares: "}},
+		{"--from 2026-10-24T06:30 --by day", []string{
 			"hot-water, ", "chilled-glycol, ", "dryer-air, ", "2026-10-24 +01:00*", "2026-10-25 +01:00 ", "2026-10-27 +00:00*",
 			"* in part: 2026-10-24 06:30 +01:00 to 2026-10-25 00:00 +01:00", "* in part: 2026-10-27 00:00 +00:00 to 2026-10-27 07:00 +00:00",
 			"Registers at the last commit: 0 MWh given, 0 MWh taken.", "Peak: heat over time of the highest 15 min"}},
 		{"--from 2026-10 --to 2027-01 --by month --demand 1h", []string{"2026-10 +01:00*", "10-24 ", "The first record is of 2026-10-24 00:00 +01:00",
 			"The history is accounted for up to 2026-10-27 07:00 +00:00."}},
+		{"--from 2026-10-24 --by day --demand none", []string{"Highest: the highest figure"}},
 		{"--from 2026-10-24 --by hour --demand 5m --zone Asia/Kolkata", []string{"2026-10-24 04:00 +05:30 ", "  0:30:00  ", "2026-10-27 12:00 +05:30*", "Asia/Kolkata"}},
 	} {
 		status, out, errs := report(t, append([]string{"--data", data}, strings.Fields(tt.args)...)...)
@@ -47,6 +49,82 @@ func TestReportTable(t *testing.T) {
 			if n := utf8.RuneCountInString(strings.TrimSuffix(line, "\n")); n > 100 {
 				t.Errorf("%s: %d columns: %s", tt.args, n, line)
 			}
+		}
+	}
+}
+
+// rich is a report of one load with all that there may be to tell.
+func rich(by string, demand float64) *agent.Report {
+	zone := time.FixedZone("", 3600)
+	at := func(hours int) time.Time { return time.Date(2026, 10, 24, hours, 0, 0, 0, zone) }
+	period := func(from, to int) agent.PeriodReport {
+		mean, u := 480e3, 4e3
+		p := agent.PeriodReport{
+			Start: at(from), End: at(to), AccountedFrom: at(from), AccountedTo: at(to),
+			Given: 1.08e11, Taken: 3.6e9, BridgedGiven: 7.2e9, Uncertainty: 1.8e9, Systematic: 1.799e9, Random: 6e7, Expanded: 3.6e9,
+			Shares:   []agent.Share{{Part: "outlet pressure", Fraction: 0.62}, {Part: "heat capacity", Fraction: 0.3}, {Part: "matched pair", Fraction: 0.05}, {Part: "random", Fraction: 0.005}},
+			Measured: 80000, Bridged: 6000, Missing: 400, Latent: 7300, Coverage: 0.92, Mean: &mean, MeanU: &u,
+			Lowest: &agent.Extreme{Duty: 1e3, Start: at(from), End: at(from + 1)}, Highest: &agent.Extreme{Duty: 6e5, Start: at(from), End: at(from + 1)},
+			Witness: &agent.Witness{Counted: 1.008e11, Served: 1.0206e11, Deviation: 0.0125},
+		}
+		if demand != 0 {
+			p.Demand = &agent.Demand{Windows: 96, Full: 80, Peak: &agent.Peak{Duty: 5.8e5, Start: at(from).UTC(), End: at(from + 1), Coverage: 0.987}}
+		}
+		return p
+	}
+	l := agent.LoadReport{Load: "coil", Periods: []agent.PeriodReport{period(0, 24), period(24, 48)}, Total: period(0, 48), Register: &agent.Register{Given: 5e11, Bridged: 12000, BridgedGiven: 1.44e10}}
+	return &agent.Report{Zone: "Etc/GMT-1", By: by, From: at(0), To: at(48), Accounted: at(48), Demand: demand, Factor: 2, Loads: []agent.LoadReport{l}}
+}
+
+// What is bridged or latent, a witness and the shares have their place, within 100 columns.
+func TestReportTableOfAllThereIs(t *testing.T) {
+	for _, by := range []string{"hour", "day", "month"} {
+		for _, demand := range []float64{0, 900} {
+			var b strings.Builder
+			if err := reportTable(&b, rich(by, demand), details{shares: true}); err != nil {
+				t.Fatal(err)
+			}
+			text := regexp.MustCompile(` +`).ReplaceAllString(b.String(), " ")
+			for _, want := range []string{
+				"\n bridged 1:40:00 2.0 0\n", "\n latent 2:01:40\n", " 30.0 1.0 1.0 92.0 % 0:06:40 480.0 ",
+				" counted served deviation\n MWh MWh\n", " 28.0 28.4 +1.25 %\n", "\nuncertainty ±2u systematic random shares\n",
+				" 1.00 1.00 0.03 outlet pressure 62 %, heat capacity 30 %\n", "; bridged 4.0 MWh given, 0 MWh taken.", "\nBridged: ", "\nLatent: ", "\nWitness: ", "\nShares: ",
+			} {
+				if !strings.Contains(text, want) {
+					t.Errorf("by %s: %q is not in\n%s", by, want, b.String())
+				}
+			}
+			for line := range strings.Lines(b.String()) {
+				if n := utf8.RuneCountInString(strings.TrimSuffix(line, "\n")); n > 100 {
+					t.Errorf("by %s, demand %g: %d columns: %s", by, demand, n, line)
+				}
+			}
+		}
+	}
+	var b strings.Builder
+	if err := reportTable(&b, rich("day", 900), details{}); err != nil || strings.Contains(b.String(), "systematic") {
+		t.Errorf("shares that are not asked for: %v\n%s", err, b.String())
+	}
+}
+
+// The csv tells the same, with a column a share where they are asked for.
+func TestReportCSVOfAllThereIs(t *testing.T) {
+	var b strings.Builder
+	if err := reportCSV(&b, rich("day", 900), details{shares: true}); err != nil {
+		t.Fatal(err)
+	}
+	records, err := csv.NewReader(strings.NewReader(b.String())).ReadAll()
+	if err != nil || len(records) != 3 {
+		t.Fatalf("%d records, %v", len(records), err)
+	}
+	for name, want := range map[string]string{
+		"given_kWh": "30000", "bridged_given_kWh": "2000", "bridged_taken_kWh": "0", "bridged_s": "6000", "latent_s": "7300",
+		"expanded_uncertainty_kWh": "1000", "systematic_expanded_uncertainty_kWh": "999.4444444444445", "random_expanded_uncertainty_kWh": "33.333333333333336",
+		"witness_counted_kWh": "28000", "witness_served_kWh": "28350", "witness_deviation": "0.0125",
+		"share_outlet_pressure": "0.62", "share_heat_capacity": "0.3", "share_random": "0.005", "share_flow": "0", "share_not_told_apart": "0",
+	} {
+		if i := slices.Index(records[0], name); i < 0 || records[1][i] != want {
+			t.Errorf("%s: column %d of %q, want %s", name, i, records[1], want)
 		}
 	}
 }
@@ -81,7 +159,7 @@ func TestReportCSVAgainstJSON(t *testing.T) {
 	}
 	for _, l := range r.Loads {
 		for name, want := range map[string]float64{
-			"given_kWh": l.Total.Given / 3.6e6, "taken_kWh": l.Total.Taken / 3.6e6, "expanded_uncertainty_kWh": 2 * l.Total.Uncertainty / 3.6e6,
+			"given_kWh": l.Total.Given / 3.6e6, "taken_kWh": l.Total.Taken / 3.6e6, "expanded_uncertainty_kWh": 2 * l.Total.Uncertainty / 3.6e6, "systematic_expanded_uncertainty_kWh": 2 * l.Total.Systematic / 3.6e6,
 			"measured_s": l.Total.Measured, "missing_s": l.Total.Missing, "bridged_s": 0,
 			"demand_windows": float64(l.Total.Demand.Windows), "demand_windows_covered_throughout": float64(l.Total.Demand.Full),
 		} {
@@ -160,7 +238,7 @@ func TestReportTellsItsNotes(t *testing.T) {
 func TestReportCSVHasNoFormulas(t *testing.T) {
 	for name, want := range map[string]string{"hot-water": "hot-water", "=1+1": "'=1+1", "+a": "'+a", "-a": "'-a", "@a": "'@a", "\ta": "'\ta", "＝a": "'＝a", "a=1,b": "a=1,b"} {
 		var b strings.Builder
-		if err := reportCSV(&b, &agent.Report{Loads: []agent.LoadReport{{Load: name, Periods: make([]agent.PeriodReport, 1)}}}); err != nil {
+		if err := reportCSV(&b, &agent.Report{Loads: []agent.LoadReport{{Load: name, Periods: make([]agent.PeriodReport, 1)}}}, details{}); err != nil {
 			t.Fatal(err)
 		}
 		records, err := csv.NewReader(strings.NewReader(b.String())).ReadAll()
@@ -186,7 +264,8 @@ func TestReportRefusals(t *testing.T) {
 		{"--data " + data + " --from 2026-10-24 --to 2026-10-24", exitWrong, "--to 2026-10-24 is not after from 2026-10-24"},
 		{"--data " + data + " --from 2026-10-24 --by week", exitWrong, `--by "week": allowed are hour, day, month`},
 		{"--data " + data + " --from 2026-10-24 --demand 7m", exitWrong, "--demand 7m0s: allowed are 5m"},
-		{"--data " + data + " --from 2026-10-24 --demand soon", exitWrong, "soon"},
+		{"--data " + data + " --from 2026-10-24 --demand -1ns", exitWrong, "--demand -1ns: allowed are 5m"},
+		{"--data " + data + " --from 2026-10-24 --demand soon", exitWrong, `--demand "soon" is no length of time`},
 		{"--data " + data + " --from 2026-10-24 --format xml", exitWrong, `--format "xml": allowed are table, csv, json`},
 		{"--data " + data + " --from 2026-10-24 --zone Dublin", exitWrong, `--zone "Dublin" is not known`},
 		{"--data " + data + " --from 2026-10-24 --load hot-watre", exitWrong, `--load "hot-watre" is not in the history; did you mean "hot-water"?`},
@@ -229,6 +308,11 @@ func TestReadmeNamesTheReportKeys(t *testing.T) {
 		t.Fatal(err)
 	}
 	have := map[string]bool{"notes": true, "records_not_used": true} // of a damaged history
+	gather(have, any)
+	witness, err := json.Marshal(agent.PeriodReport{Witness: new(agent.Witness)})
+	if err != nil || json.Unmarshal(witness, &any) != nil {
+		t.Fatal(err)
+	}
 	gather(have, any)
 	for key := range have {
 		if !strings.Contains(list, "`"+key+"`") {

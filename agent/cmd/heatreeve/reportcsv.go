@@ -4,6 +4,7 @@ import (
 	"encoding/csv"
 	"fmt"
 	"io"
+	"slices"
 	"strconv"
 	"strings"
 	"time"
@@ -19,19 +20,36 @@ var reportHeader = []string{
 	"lowest_duty_kW", "lowest_start", "lowest_end", "highest_duty_kW", "highest_start", "highest_end",
 	"peak_demand_kW", "peak_demand_start", "peak_demand_end", "peak_demand_coverage",
 	"demand_windows", "demand_windows_covered_throughout",
+	"bridged_given_kWh", "bridged_taken_kWh", "latent_s",
+	"systematic_expanded_uncertainty_kWh", "random_expanded_uncertainty_kWh",
+	"witness_counted_kWh", "witness_served_kWh", "witness_deviation",
 }
+
+// shareColumn names the column of a share of the variance.
+func shareColumn(part string) string { return "share_" + strings.ReplaceAll(part, " ", "_") }
 
 // reportCSV writes a line a period and load (RFC 4180). What there is none of is an
 // empty field.
-func reportCSV(w io.Writer, r *agent.Report) error {
+func reportCSV(w io.Writer, r *agent.Report, d details) error {
 	c := csv.NewWriter(w)
 	c.UseCRLF = true
-	if err := c.Write(reportHeader); err != nil {
+	header := slices.Clone(reportHeader)
+	if d.shares {
+		for _, part := range agent.ShareNames() {
+			header = append(header, shareColumn(part))
+		}
+	}
+	if err := c.Write(header); err != nil {
 		return err
 	}
 	for i := range r.Loads {
 		for k := range r.Loads[i].Periods {
-			if err := c.Write(reportRecord(r.Loads[i].Load, &r.Loads[i].Periods[k])); err != nil {
+			p := &r.Loads[i].Periods[k]
+			record := reportRecord(r.Loads[i].Load, p)
+			if d.shares {
+				record = append(record, shareFields(p.Shares)...)
+			}
+			if err := c.Write(record); err != nil {
 				return err
 			}
 		}
@@ -46,17 +64,35 @@ func reportCSV(w io.Writer, r *agent.Report) error {
 func reportRecord(load string, p *agent.PeriodReport) []string {
 	fields := []string{
 		textField(load), instantField(p.Start), instantField(p.End), instantField(p.AccountedFrom), instantField(p.AccountedTo),
-		field(p.Given / 3.6e6), field(p.Taken / 3.6e6), field(2 * p.Uncertainty / 3.6e6),
+		energyField(p.Given), energyField(p.Taken), energyField(p.Expanded),
 		field(p.Measured), field(p.Bridged), field(p.Missing), field(p.Coverage),
 	}
 	if p.Mean == nil {
 		fields = append(fields, make([]string, 8)...)
 	} else {
-		fields = append(fields, field(*p.Mean/1e3), field(2**p.MeanU/1e3),
+		fields = append(fields, field(*p.Mean/1e3), field(agent.CoverageFactor**p.MeanU/1e3),
 			field(p.Lowest.Duty/1e3), instantField(p.Lowest.Start), instantField(p.Lowest.End),
 			field(p.Highest.Duty/1e3), instantField(p.Highest.Start), instantField(p.Highest.End))
 	}
-	return append(fields, demandFields(p.Demand)...)
+	fields = append(append(fields, demandFields(p.Demand)...),
+		energyField(p.BridgedGiven), energyField(p.BridgedTaken), field(p.Latent),
+		energyField(agent.CoverageFactor*p.Systematic), energyField(agent.CoverageFactor*p.Random))
+	if p.Witness == nil {
+		return append(fields, "", "", "")
+	}
+	return append(fields, energyField(p.Witness.Counted), energyField(p.Witness.Served), field(p.Witness.Deviation))
+}
+
+// shareFields has the fraction of each part that there may be.
+func shareFields(all []agent.Share) (fields []string) {
+	for _, part := range agent.ShareNames() {
+		fraction := 0.0
+		if i := slices.IndexFunc(all, func(s agent.Share) bool { return s.Part == part }); i >= 0 {
+			fraction = all[i].Fraction
+		}
+		fields = append(fields, field(fraction))
+	}
+	return fields
 }
 
 func demandFields(d *agent.Demand) []string {
@@ -71,6 +107,9 @@ func demandFields(d *agent.Demand) []string {
 	}
 	return append(peak, strconv.Itoa(d.Windows), strconv.Itoa(d.Full))
 }
+
+// energyField shows J in kWh.
+func energyField(joules float64) string { return field(joules / 3.6e6) }
 
 // field shows a number with all its digits, and never with an exponent.
 func field(x float64) string { return strconv.FormatFloat(x, 'f', -1, 64) }

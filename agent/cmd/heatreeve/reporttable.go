@@ -3,26 +3,32 @@ package main
 import (
 	"fmt"
 	"io"
+	"iter"
 	"math"
 	"slices"
 	"strings"
 	"text/tabwriter"
 	"time"
+	"unicode/utf8"
 
 	"heatreeve/agent"
 )
 
 const (
-	reportLegend = `±2u: twice the standard uncertainty of given less taken, as if systematic throughout.
+	reportLegend = `±2u: twice the standard uncertainty of given less taken.
 Missing time has no heat in it. Mean duty: over the covered time, positive in the load's service.
 `
 	highestLegend = "Highest: the highest figure of the duty; at: in the minute or the hour from then on.\n"
 	peakLegend    = "Peak: heat over time of the highest %.0f min by the local clock; of it: the covered part of that.\n"
+	bridgedLegend = "Bridged: heat by a straight line over time without data; it is in no other figure.\n"
+	latentLegend  = "Latent: covered time whose duty is the sensible part only.\n"
+	witnessLegend = "Witness: what another meter counted, and the load served in the spans that were measured throughout.\n"
+	sharesLegend  = "Shares: of the variance, largest first. What is systematic lasts; what is random averages out.\n"
 	reportSafety  = "For information only: no billing meter.\n"
 )
 
 // reportTable writes a table for each load, and below them what the columns are.
-func reportTable(w io.Writer, r *agent.Report) error {
+func reportTable(w io.Writer, r *agent.Report, d details) error {
 	if r.Site != "" {
 		fmt.Fprintf(w, "%s\n\n", r.Site)
 	}
@@ -31,6 +37,12 @@ func reportTable(w io.Writer, r *agent.Report) error {
 		s := sheetOf(r, l)
 		fmt.Fprintf(w, "%s, %s to %s, %s\n\n%s", l.Load, clockTime(r.From), clockTime(r.To), r.Zone, s.table(l))
 		s.remark(w, l)
+		if hasWitness(&l.Total) {
+			fmt.Fprintf(w, "\n%s", s.witnesses(l))
+		}
+		if d.shares {
+			fmt.Fprintf(w, "\n%s", s.shares(l))
+		}
 		fmt.Fprintln(w)
 	}
 	for _, note := range r.Notes {
@@ -39,12 +51,34 @@ func reportTable(w io.Writer, r *agent.Report) error {
 	if r.To.After(r.Accounted) {
 		fmt.Fprintf(w, "The history is accounted for up to %s.\n", clockTime(r.Accounted))
 	}
-	legend := highestLegend
-	if r.Demand != 0 {
-		legend = fmt.Sprintf(peakLegend, r.Demand/60)
-	}
-	_, err := fmt.Fprint(w, reportLegend, legend, reportSafety)
+	_, err := io.WriteString(w, legend(r, d))
 	return err
+}
+
+// legend tells what the columns are that the tables have.
+func legend(r *agent.Report, d details) string {
+	text := reportLegend + highestLegend
+	if r.Demand != 0 {
+		text = reportLegend + fmt.Sprintf(peakLegend, r.Demand/60)
+	}
+	for _, more := range []struct {
+		shown bool
+		text  string
+	}{{anyHas(r, hasBridged), bridgedLegend}, {anyHas(r, hasLatent), latentLegend}, {anyHas(r, hasWitness), witnessLegend}, {d.shares, sharesLegend}} {
+		if more.shown {
+			text += more.text
+		}
+	}
+	return text + reportSafety
+}
+
+func hasBridged(p *agent.PeriodReport) bool { return p.Bridged > 0 }
+func hasLatent(p *agent.PeriodReport) bool  { return p.Latent > 0 }
+func hasWitness(p *agent.PeriodReport) bool { return p.Witness != nil }
+
+// anyHas tells whether any load of the report has something.
+func anyHas(r *agent.Report, what func(*agent.PeriodReport) bool) bool {
+	return slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return what(&l.Total) })
 }
 
 func clockTime(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }
@@ -60,7 +94,11 @@ func (s *sheet) remark(w io.Writer, l *agent.LoadReport) {
 		fmt.Fprintf(w, "The first record is of %s; the time before is missing in the total.\n", clockTime(*l.Begins))
 	}
 	if g := l.Register; g != nil {
-		fmt.Fprintf(w, "Registers at the last commit: %s %s given, %s %s taken.\n", s.heatOf(g.Given), s.heat, s.heatOf(g.Taken), s.heat)
+		fmt.Fprintf(w, "Registers at the last commit: %s %s given, %s %s taken", s.heatOf(g.Given), s.heat, s.heatOf(g.Taken), s.heat)
+		if g.Bridged > 0 {
+			fmt.Fprintf(w, "; bridged %s %s given, %s %s taken", s.heatOf(g.BridgedGiven), s.heat, s.heatOf(g.BridgedTaken), s.heat)
+		}
+		fmt.Fprintln(w, ".")
 	}
 }
 
@@ -71,6 +109,7 @@ func inPart(p *agent.PeriodReport) bool {
 // sheet is the table of one load, with the units and decimals that it is written in.
 type sheet struct {
 	by            string
+	width         int // of the names of periods
 	demand        bool
 	heat          string  // unit of the heats
 	energy        float64 // J in it
@@ -82,10 +121,12 @@ func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
 	if max(l.Total.Given, l.Total.Taken) >= 36e9 {
 		s.energy, s.heat = 3.6e9, "MWh"
 	}
+	s.width = nameWidths[r.By]
 	var heats, duties []float64
 	for _, p := range append(l.Periods, l.Total) {
+		s.width = max(s.width, len(bridgedName(&p)), len(latentName(&p)))
 		if p.MeanU != nil && *p.MeanU > 0 {
-			heats, duties = append(heats, 2*p.Uncertainty/s.energy), append(duties, 2**p.MeanU/1e3)
+			heats, duties = append(heats, p.Expanded/s.energy), append(duties, agent.CoverageFactor**p.MeanU/1e3)
 		}
 	}
 	s.heats, s.duties = places(heats, 3), places(duties, 2)
@@ -95,16 +136,101 @@ func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
 func (s *sheet) table(l *agent.LoadReport) string {
 	t := newColumns(tabwriter.AlignRight)
 	s.head(t)
-	for i := range l.Periods {
-		p := &l.Periods[i]
-		s.line(t, s.name(p), p, s.by == "month")
+	for name, p := range s.rows(l) {
+		s.line(t, name, p, s.by == "month" || p == &l.Total)
+		s.apart(t, p)
 	}
-	s.line(t, "total", &l.Total, true)
+	return flushLeft(t)
+}
+
+// rows are the periods with their names, and the total.
+func (s *sheet) rows(l *agent.LoadReport) iter.Seq2[string, *agent.PeriodReport] {
+	return func(yield func(string, *agent.PeriodReport) bool) {
+		for i := range l.Periods {
+			if !yield(s.name(&l.Periods[i]), &l.Periods[i]) {
+				return
+			}
+		}
+		yield("total", &l.Total)
+	}
+}
+
+// flushLeft is the table without what parts columns before the first.
+func flushLeft(t *columns) string {
 	var lines strings.Builder
 	for line := range strings.Lines(t.String()) {
-		lines.WriteString(strings.TrimPrefix(line, "  ")) // what parts columns stands before the first as well
+		lines.WriteString(strings.TrimPrefix(line, "  "))
 	}
 	return lines.String()
+}
+
+// apart adds a line for the bridged time, and one for the latent, where there is any.
+func (s *sheet) apart(t *columns, p *agent.PeriodReport) {
+	empty := make([]string, s.columns()-3)
+	if hasBridged(p) {
+		t.line(append([]string{s.pad(bridgedName(p)), s.heatOf(p.BridgedGiven), s.heatOf(p.BridgedTaken)}, empty...)...)
+	}
+	if hasLatent(p) {
+		t.line(append([]string{s.pad(latentName(p)), "", ""}, empty...)...)
+	}
+}
+
+func bridgedName(p *agent.PeriodReport) string { return "  bridged " + clockLength(p.Bridged) }
+
+func latentName(p *agent.PeriodReport) string { return "  latent " + clockLength(p.Latent) }
+
+// columns is how many the main table has.
+func (s *sheet) columns() int {
+	if s.demand {
+		return 10
+	}
+	return 9
+}
+
+// witnesses is the table of the periods that have a witness.
+func (s *sheet) witnesses(l *agent.LoadReport) string {
+	t := newColumns(tabwriter.AlignRight)
+	t.line(s.pad("witness"), "counted", "served", "deviation")
+	t.line(s.pad(""), s.heat, s.heat, "")
+	for name, p := range s.rows(l) {
+		if w := p.Witness; w != nil {
+			t.line(s.pad(name), s.heatOf(w.Counted), s.heatOf(w.Served), fmt.Sprintf("%+.2f %%", 100*w.Deviation))
+		}
+	}
+	return flushLeft(t)
+}
+
+// shareColumns is how wide the list of shares may be.
+const shareColumns = 42
+
+// shares is the table of what the uncertainty is made of.
+func (s *sheet) shares(l *agent.LoadReport) string {
+	t := newColumns(tabwriter.AlignRight)
+	text := func(x string) string { return fmt.Sprintf("%-*s", shareColumns, x) }
+	t.line(s.pad("uncertainty"), "±2u", "systematic", "random", text("shares"))
+	t.line(s.pad(""), s.heat, s.heat, s.heat, text(""))
+	fine := *s
+	fine.heats++
+	for name, p := range s.rows(l) {
+		t.line(s.pad(name), fine.heatOf(p.Expanded), fine.heatOf(agent.CoverageFactor*p.Systematic), fine.heatOf(agent.CoverageFactor*p.Random), text(largest(p.Shares)))
+	}
+	return flushLeft(t)
+}
+
+// largest lists the shares of one percent and more, as many as there is room for.
+func largest(all []agent.Share) string {
+	list := ""
+	for _, s := range all {
+		next := fmt.Sprintf("%s %.0f %%", s.Part, 100*s.Fraction)
+		if list != "" {
+			next = list + ", " + next
+		}
+		if s.Fraction < 0.01 || utf8.RuneCountInString(next) > shareColumns {
+			break
+		}
+		list = next
+	}
+	return list
 }
 
 // places is how many decimals the middle one of the uncertainties asks for.
@@ -120,7 +246,7 @@ func places(uncertainties []float64, most int) int {
 var nameWidths = map[string]int{"hour": 24, "day": 18, "month": 15}
 
 // pad keeps names of periods to the left in columns that keep to the right.
-func (s *sheet) pad(name string) string { return fmt.Sprintf("%-*s", nameWidths[s.by], name) }
+func (s *sheet) pad(name string) string { return fmt.Sprintf("%-*s", s.width, name) }
 
 func (s *sheet) head(t *columns) {
 	first := []string{s.pad(s.by), "given", "taken", "±2u", "covered", "missing", "mean"}
@@ -147,7 +273,7 @@ func (s *sheet) line(t *columns, name string, p *agent.PeriodReport, long bool) 
 	if p.Mean != nil {
 		mean = decimals(*p.Mean/1e3, s.duties)
 	}
-	cells := []string{s.pad(name), s.heatOf(p.Given), s.heatOf(p.Taken), s.heatOf(2 * p.Uncertainty), covered(p.Coverage), clockLength(p.Missing), mean}
+	cells := []string{s.pad(name), s.heatOf(p.Given), s.heatOf(p.Taken), s.heatOf(p.Expanded), covered(p.Coverage), clockLength(p.Missing), mean}
 	switch {
 	case s.demand && p.Demand != nil && p.Demand.Peak != nil:
 		k := p.Demand.Peak
