@@ -69,21 +69,6 @@ func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt,
 	return nil
 }
 
-// property fills in what the fluid's own figures leave open. Those of cp at both ends are
-// taken for one error, the greater of the two.
-func (q *equation) property(f *Figure, m *medium, x *State, duty float64) {
-	cpIn, densityIn := m.Uncertainty(x.Inlet, x.Pressure)
-	cpOut, densityOut := m.Uncertainty(x.Outlet, x.OutletPressure)
-	f.Share[PartCp] = duty * max(cpIn, cpOut)
-	if q.FlowKind == VolumeFlow {
-		density := densityIn
-		if q.MeterAtOutlet {
-			density = densityOut
-		}
-		f.Share[PartDensity] = duty * density
-	}
-}
-
 // sumOfSquares is the variance by contributions that are independent of each other.
 func sumOfSquares(contributions []float64) float64 {
 	var sum float64

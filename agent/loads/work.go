@@ -85,7 +85,8 @@ func equationOf(s *Stream) (equation, error) {
 // medium is a fluid with the way to its balance.
 type medium struct {
 	thermo.Fluid
-	wet     thermo.Wet // nil where the fluid is none
+	wet     thermo.Wet   // nil where the fluid is none
+	blend   thermo.Blend // nil where the fluid is none
 	balance func(T, p float64) (thermo.Balance, error)
 }
 
@@ -93,7 +94,8 @@ func mediumOf(f thermo.Fluid) medium {
 	if w, ok := f.(thermo.Wet); ok {
 		return medium{Fluid: f, wet: w}
 	}
-	return medium{Fluid: f, balance: thermo.BalanceOf(f)}
+	blend, _ := f.(thermo.Blend)
+	return medium{Fluid: f, blend: blend, balance: thermo.BalanceOf(f)}
 }
 
 func (m *medium) inlet(x *State) (thermo.Balance, error) {

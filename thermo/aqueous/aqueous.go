@@ -101,12 +101,20 @@ func (m *mixture) MolarMass() float64 { return 0 }
 // the stated uncertainty of the mass fraction, by the slope of cp and density at
 // that state, and of what an incompressible fluid leaves out of cp at p, over √3.
 func (m *mixture) Uncertainty(T, p float64) (cp, density float64) {
-	t := T - m.base
 	cp, density = fitUncertainty(m.deviations, T)
-	cp = math.Hypot(cp, m.u*m.slope.at(t)/m.cp.at(t))
-	cp = math.Hypot(cp, m.stiff.CpChange(p)/m.cp.at(t)/math.Sqrt(3))
-	density = math.Hypot(density, m.u*m.densitySlope.at(t)/m.density.at(t))
-	return cp, density
+	byCp, byDensity := m.Strength(T, p)
+	cp = math.Hypot(cp, byCp)
+	cp = math.Hypot(cp, m.stiff.CpChange(p)/m.cp.at(T-m.base)/math.Sqrt(3))
+	return cp, math.Hypot(density, byDensity)
+}
+
+// Strength is by the slopes of the polynomials at that state. With more of a glycol or a
+// salt the density rises and cp falls, and what is left of the product is from next to
+// nothing to 0.98 of the greater one; with more of an alcohol both fall over most of the
+// range, with more ammonia at times both rise.
+func (m *mixture) Strength(T, p float64) (cp, density float64) {
+	t := T - m.base
+	return m.u * m.slope.at(t) / m.cp.at(t), m.u * m.densitySlope.at(t) / m.density.at(t)
 }
 
 // Span returns the temperature at which ice may form and a temperature at p in Pa
