@@ -179,8 +179,21 @@ func checkPage(t *testing.T, r *running, s *view.Snapshot) {
 	if err != nil || given < s.Loads[0].Booked.Given {
 		t.Errorf("the page shows %g J given (%v), the snapshot before it %g J", given, err, s.Loads[0].Booked.Given)
 	}
-	if v, err := r.metric(t, "heatreeve_broker_connected"); err != nil || v != 1 {
-		t.Errorf("broker connected: %v, %v", v, err)
+	for name, want := range map[string]float64{"heatreeve_broker_connected": 1, "heatreeve_history_writable": 1} {
+		if v, err := r.metric(t, name); err != nil || v != want {
+			t.Errorf("%s is %v, %v; want %v", name, v, err, want)
+		}
+	}
+	u, err := r.metric(t, "heatreeve_load_duty_uncertainty_watts", "hot-water")
+	random, err2 := r.metric(t, "heatreeve_load_duty_random_uncertainty_watts", "hot-water")
+	if err != nil || err2 != nil || random <= 0 || random >= u {
+		t.Errorf("of an uncertainty of %g W (%v) %g W (%v) are random", u, err, random, err2)
+	}
+	// What the demo bridges is the site's to say; the registers are there from the start.
+	bridged, err := r.metric(t, "heatreeve_load_bridged_heat_joules_total", "given", "hot-water")
+	spent, err2 := r.metric(t, "heatreeve_load_time_seconds_total", "bridged", "hot-water")
+	if err != nil || err2 != nil || (bridged > 0) != (spent > 0) {
+		t.Errorf("%g J (%v) bridged in %g s (%v)", bridged, err, spent, err2)
 	}
 }
 

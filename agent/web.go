@@ -53,12 +53,12 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 			figure, verdict := s.Current(i, now.UnixNano())
 			duty := "-"
 			if figure.Measured() {
-				duty = kilowatts(figure.Duty)
+				duty = fmt.Sprintf("%.1f ± %.1f kW", figure.Duty/1e3, CoverageFactor*figure.Uncertainty/1e3)
 			}
-			line := fmt.Sprintf("%-32s %-10s %14s  %s", s.Loads[i].Name, verdict, duty, cmp.Or(figure.Reason, figure.Note))
+			line := fmt.Sprintf("%-32s %-10s %20s  %s", s.Loads[i].Name, verdict, duty, cmp.Or(figure.Reason, figure.Note))
 			fmt.Fprintln(w, strings.TrimRight(line, " "))
 		}
-		fmt.Fprintln(w)
+		fmt.Fprint(w, "\n±: twice the standard uncertainty\n\n")
 	}
 	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/export   readings of a tag or minutes of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
 }

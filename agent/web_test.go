@@ -15,14 +15,14 @@ import (
 func TestFrontPage(t *testing.T) {
 	s := &view.Snapshot{Site: "Mill", Loads: []view.Load{
 		{Name: "hall", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "TT-1 is old"}},
-		{Name: "cooler", Verdict: design.Holding, Until: clock.UnixNano(), Figure: loads.Figure{Duty: 40.8e3, Remark: loads.Remark{Latent: true, Note: "sensible part only: coil"}}},
+		{Name: "cooler", Verdict: design.Holding, Until: clock.UnixNano(), Figure: loads.Figure{Duty: 40.8e3, Uncertainty: 350, Remark: loads.Remark{Latent: true, Note: "sensible part only: coil"}}},
 	}}
 	page := func(now int64) string {
 		var b bytes.Buffer
 		front(&b, s, wall(now))
 		return strings.Join(strings.Fields(b.String()), " ")
 	}
-	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 kW sensible part only: coil"} {
+	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 ± 0.7 kW sensible part only: coil"} {
 		if got := page(clock.UnixNano()); !strings.Contains(got, want) {
 			t.Errorf("page %q, want %q in it", got, want)
 		}

@@ -24,14 +24,17 @@ func desc(name, help string, labels ...string) *prometheus.Desc {
 var (
 	duty        = desc("load_duty_watts", "Heat duty at the last beat, positive in the load's own service; absent while the load is blind.", "load")
 	uncertainty = desc("load_duty_uncertainty_watts", "Standard uncertainty of the duty (coverage factor 1).", "load")
+	random      = desc("load_duty_random_uncertainty_watts", "Part of the standard uncertainty of the duty that changes from reading to reading, and averages out.", "load")
 	dutyMean    = desc("load_duty_mean_watts", "Rolling mean of the duty over the measured part of the window.", "load", "window")
 	coverage    = desc("load_coverage_ratio", "Part of the window that was measured, 0 to 1.", "load", "window")
 	heat        = desc("load_heat_joules_total", "Heat that the stream gave up (given) or took up (taken), as last committed to disk; survives restarts.", "load", "direction")
+	bridgedHeat = desc("load_bridged_heat_joules_total", "Heat by a straight line over short times without data, as last committed to disk; in no other register, and survives restarts.", "load", "direction")
 	spent       = desc("load_time_seconds_total", "Time accounted for, by kind, as last committed to disk; survives restarts.", "load", "kind")
 	latent      = desc("load_latent", "1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.", "load")
 	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
 	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
 	outlet      = desc("load_outlet_celsius", "Outlet temperature that the duty was computed from.", "load")
+	content     = desc("load_content_celsius", "Temperature of a vessel's content that the duty was computed from.", "load")
 	expected    = desc("load_expected_duty_watts", "Duty that the design expects now.", "load")
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
 
@@ -52,6 +55,7 @@ var (
 	fileBytes = desc("history_file_bytes", "Size of the history's file, free pages included.")
 	lost      = desc("history_lost_readings_total", "Readings given up because the disk took nothing for long; the registers have them.")
 	lostMins  = desc("history_lost_records_total", "Minute records given up because the disk took nothing for long; the registers have them.")
+	writable  = desc("history_writable", "1 while the history takes what is written, 0 since a commit has failed.")
 	failures  = desc("history_commit_failures_total", "Commits of the history that failed since the agent started.")
 )
 
@@ -70,8 +74,8 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 
 // Describe sends every description, so that a clash of names is found at start.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
-	for _, d := range []*prometheus.Desc{duty, uncertainty, dutyMean, coverage, heat, spent, latent, massFlow, inlet, outlet, expected, verdict,
-		reading, readings, refused, refusals, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, fileBytes, failures, lost, lostMins} {
+	for _, d := range []*prometheus.Desc{duty, uncertainty, random, dutyMean, coverage, heat, bridgedHeat, spent, latent, massFlow, inlet, outlet, content, expected, verdict,
+		reading, readings, refused, refusals, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, fileBytes, writable, failures, lost, lostMins} {
 		ch <- d
 	}
 }
@@ -115,7 +119,12 @@ func (o sink) figure(name string, f *loads.Figure) {
 	}
 	o.gauge(duty, f.Duty, name)
 	o.gauge(uncertainty, f.Uncertainty, name)
+	o.gauge(random, f.Random, name)
 	o.gauge(latent, truth(f.Latent), name)
+	if f.Content != 0 { // a vessel, which has no flow
+		o.gauge(content, celsius(f.Content), name)
+		return
+	}
 	o.gauge(massFlow, f.MassFlow, name)
 	if f.Idle {
 		return
@@ -127,7 +136,10 @@ func (o sink) figure(name string, f *loads.Figure) {
 func (o sink) load(l *view.Load, now design.Verdict) {
 	o.counter(heat, l.Booked.Given, l.Name, "given")
 	o.counter(heat, l.Booked.Taken, l.Name, "taken")
+	o.counter(bridgedHeat, l.Booked.BridgedGiven, l.Name, "given")
+	o.counter(bridgedHeat, l.Booked.BridgedTaken, l.Name, "taken")
 	o.counter(spent, float64(l.Booked.Measured)/1e9, l.Name, "measured")
+	o.counter(spent, float64(l.Booked.Bridged)/1e9, l.Name, "bridged")
 	o.counter(spent, float64(l.Booked.Missing)/1e9, l.Name, "missing")
 	if l.Design != 0 {
 		o.gauge(expected, l.Design, l.Name)
@@ -187,6 +199,7 @@ func (o sink) agent(s *view.Snapshot) {
 	o.gauge(waiting, float64(s.Broker.Waiting))
 	o.gauge(bytes, float64(s.History.Bytes))
 	o.gauge(fileBytes, float64(s.History.FileBytes))
+	o.gauge(writable, truth(s.History.Fault == ""))
 	o.counter(failures, float64(s.History.Failures))
 	o.counter(lost, float64(s.History.Lost))
 	o.counter(lostMins, float64(s.History.LostMinutes))

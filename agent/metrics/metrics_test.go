@@ -21,10 +21,10 @@ func snapshot() *view.Snapshot {
 		Loads: []view.Load{
 			{
 				Name: "hot-water", Verdict: design.Short, Design: 640e3, Allow: 0.08,
-				Figure: loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
+				Figure: loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, Random: 2e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
 				Until:  instant + 30e9,
 				Means:  [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
-				Booked: loads.Totals{Given: 1.5e9, Taken: 2, Measured: 3600e9, Missing: 60e9},
+				Booked: loads.Totals{Given: 1.5e9, Taken: 2, BridgedGiven: 3e6, BridgedTaken: 5, Measured: 3600e9, Bridged: 90e9, Missing: 60e9},
 			},
 			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}},
 			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true}, Until: instant + 30e9},
@@ -100,6 +100,9 @@ heatreeve_load_heat_joules_total{direction="taken",load="hot-water"} 2
 heatreeve_load_heat_joules_total{direction="taken",load="spare"} 0
 # HELP heatreeve_load_time_seconds_total Time accounted for, by kind, as last committed to disk; survives restarts.
 # TYPE heatreeve_load_time_seconds_total counter
+heatreeve_load_time_seconds_total{kind="bridged",load="dryer"} 0
+heatreeve_load_time_seconds_total{kind="bridged",load="hot-water"} 90
+heatreeve_load_time_seconds_total{kind="bridged",load="spare"} 0
 heatreeve_load_time_seconds_total{kind="measured",load="dryer"} 0
 heatreeve_load_time_seconds_total{kind="measured",load="hot-water"} 3600
 heatreeve_load_time_seconds_total{kind="measured",load="spare"} 0
@@ -107,9 +110,59 @@ heatreeve_load_time_seconds_total{kind="missing",load="dryer"} 0
 heatreeve_load_time_seconds_total{kind="missing",load="hot-water"} 60
 heatreeve_load_time_seconds_total{kind="missing",load="spare"} 0
 `
-	err := testutil.GatherAndCompare(registry(snapshot(), instant), strings.NewReader(want), "heatreeve_load_heat_joules_total", "heatreeve_load_time_seconds_total")
+	want += `
+# HELP heatreeve_load_bridged_heat_joules_total Heat by a straight line over short times without data, as last committed to disk; in no other register, and survives restarts.
+# TYPE heatreeve_load_bridged_heat_joules_total counter
+heatreeve_load_bridged_heat_joules_total{direction="given",load="dryer"} 0
+heatreeve_load_bridged_heat_joules_total{direction="given",load="hot-water"} 3e+06
+heatreeve_load_bridged_heat_joules_total{direction="given",load="spare"} 0
+heatreeve_load_bridged_heat_joules_total{direction="taken",load="dryer"} 0
+heatreeve_load_bridged_heat_joules_total{direction="taken",load="hot-water"} 5
+heatreeve_load_bridged_heat_joules_total{direction="taken",load="spare"} 0
+`
+	err := testutil.GatherAndCompare(registry(snapshot(), instant), strings.NewReader(want), "heatreeve_load_heat_joules_total", "heatreeve_load_bridged_heat_joules_total", "heatreeve_load_time_seconds_total")
 	if err != nil {
 		t.Error(err)
+	}
+}
+
+// A vessel has a content, and neither flow nor ends; what is random of an uncertainty has
+// a series of its own.
+func TestVessel(t *testing.T) {
+	s := snapshot()
+	s.Loads[2].Figure = loads.Figure{At: instant, Duty: 40e3, Uncertainty: 900, Random: 800, Content: 338.15, Mass: 12e3, Idle: true}
+	want := `
+# HELP heatreeve_load_content_celsius Temperature of a vessel's content that the duty was computed from.
+# TYPE heatreeve_load_content_celsius gauge
+heatreeve_load_content_celsius{load="spare"} 65
+# HELP heatreeve_load_duty_random_uncertainty_watts Part of the standard uncertainty of the duty that changes from reading to reading, and averages out.
+# TYPE heatreeve_load_duty_random_uncertainty_watts gauge
+heatreeve_load_duty_random_uncertainty_watts{load="hot-water"} 2000
+heatreeve_load_duty_random_uncertainty_watts{load="spare"} 800
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from.
+# TYPE heatreeve_load_inlet_celsius gauge
+heatreeve_load_inlet_celsius{load="hot-water"} 130
+# HELP heatreeve_load_mass_flow_kilograms_per_second Mass flow that the duty was computed from.
+# TYPE heatreeve_load_mass_flow_kilograms_per_second gauge
+heatreeve_load_mass_flow_kilograms_per_second{load="hot-water"} 3
+`
+	if err := testutil.GatherAndCompare(registry(s, instant), strings.NewReader(want), "heatreeve_load_content_celsius", "heatreeve_load_duty_random_uncertainty_watts", "heatreeve_load_inlet_celsius", "heatreeve_load_mass_flow_kilograms_per_second"); err != nil {
+		t.Error(err)
+	}
+}
+
+// The history is writable until a commit fails, and again once one does not.
+func TestHistoryWritable(t *testing.T) {
+	for fault, want := range map[string]string{"": "1", "no space left on device": "0"} {
+		s := snapshot()
+		s.History.Fault = fault
+		text := `
+# HELP heatreeve_history_writable 1 while the history takes what is written, 0 since a commit has failed.
+# TYPE heatreeve_history_writable gauge
+heatreeve_history_writable ` + want + "\n"
+		if err := testutil.GatherAndCompare(registry(s, instant), strings.NewReader(text), "heatreeve_history_writable"); err != nil {
+			t.Errorf("%q: %v", fault, err)
+		}
 	}
 }
 
