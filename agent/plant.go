@@ -10,25 +10,59 @@ import (
 
 // plantOf is the site as the engine sees it.
 func plantOf(s *site.Site) loads.Config {
-	cfg := loads.Config{Grid: int64(s.Timing.Grid)}
-	for _, t := range s.Tags {
-		cfg.Tags = append(cfg.Tags, loads.Tag{Name: t.Name, MaxAge: int64(t.MaxAge), Accuracy: loads.Accuracy(t.Accuracy)})
+	cfg := loads.Config{Grid: int64(s.Timing.Grid), Bridge: int64(s.Timing.Bridge)}
+	for i := range s.Tags {
+		cfg.Tags = append(cfg.Tags, tagOf(&s.Tags[i]))
 	}
-	for _, l := range s.Loads {
-		cfg.Loads = append(cfg.Loads, loads.Load{Name: l.Name, Stream: streamOf(l.Stream)})
+	for i := range s.Loads {
+		cfg.Loads = append(cfg.Loads, loadOf(&s.Loads[i]))
 	}
 	tabulate(s, cfg.Loads)
 	return cfg
 }
 
-func streamOf(s site.Stream) loads.Stream {
+func tagOf(t *site.Tag) loads.Tag {
+	tag := loads.Tag{
+		Name: t.Name, MaxAge: int64(t.MaxAge), Accuracy: loads.Accuracy(t.Accuracy),
+		Resolution: t.Resolution, Deadband: t.Deadband, OnChange: t.OnChange, Alive: t.Alive,
+	}
+	if c := t.Counter; c != nil {
+		tag.Counter = &loads.Counter{Modulus: c.Modulus, Largest: c.Largest}
+	}
+	return tag
+}
+
+func loadOf(l *site.HeatLoad) loads.Load {
+	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness}
+	if l.Vessel != nil {
+		load.Vessel = vesselOf(l.Vessel)
+	} else {
+		load.Stream = streamOf(l.Stream)
+	}
+	return load
+}
+
+func vesselOf(v *site.Vessel) *loads.Vessel {
+	return &loads.Vessel{
+		Fluid: v.Fluid, Temperature: loads.Source(v.Temperature), Pressure: loads.Source(v.Pressure), Rigid: v.Rigid,
+		Content: loads.Source(v.Content), ContentKind: contentKinds[v.ContentKind],
+		Shell: v.Shell, Over: int64(v.Over), Still: v.Still, Gives: v.Gives, IdleBelow: v.IdleBelow, Margin: v.Margin,
+	}
+}
+
+var contentKinds = map[unit.Dimension]loads.ContentKind{unit.Mass: loads.ContentMass, unit.Volume: loads.ContentVolume}
+
+func streamOf(s *site.Stream) loads.Stream {
 	return loads.Stream{
 		Fluid: s.Fluid, Flow: loads.Source(s.Flow), FlowKind: flowKinds[s.FlowKind],
 		Inlet: loads.Source(s.Inlet), Outlet: loads.Source(s.Outlet),
 		Pressure: loads.Source(s.Pressure), OutletPressure: loads.Source(s.OutletPressure),
 		Humidity: loads.Source(s.Humidity), HumidityKind: s.HumidityKind,
 		Coil: loads.Source(s.Coil), HasCoil: s.HasCoil,
-		MeterAtOutlet: s.MeterAtOutlet, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow,
+		MeterAtOutlet: s.MeterAtOutlet, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow, Pair: s.Pair,
+		Corrections: loads.Corrections{
+			Pump: loads.Source(s.Pump), HasPump: s.HasPump, Hold: s.Hold, Stored: s.Stored, StoredOver: int64(s.StoredOver),
+		},
 	}
 }
 
@@ -49,10 +83,14 @@ func targetsOf(s *site.Site) []design.Target {
 func signalsOf(s *site.Site) []ingest.Tag {
 	var tags []ingest.Tag
 	for _, t := range s.Tags {
-		tags = append(tags, ingest.Tag{
+		tag := ingest.Tag{
 			Name: t.Name, Topic: t.Topic, Value: t.Value, Time: t.Time, TimeFormat: t.TimeFormat,
 			Scale: t.Scale, Offset: t.Offset, Min: t.Min, Max: t.Max, QoS: t.QoS,
-		})
+		}
+		if l := t.Liveness; l != nil {
+			tag.Liveness = &ingest.Liveness{Online: l.Online, Offline: l.Offline, Kept: l.Kept}
+		}
+		tags = append(tags, tag)
 	}
 	return tags
 }

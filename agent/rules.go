@@ -24,6 +24,9 @@ func rulesOf(site [32]byte, cfg *loads.Config) [32]byte {
 	write(h, bookkeeping)
 	for i := range cfg.Loads {
 		f := cfg.Loads[i].Stream.Fluid
+		if v := cfg.Loads[i].Vessel; v != nil {
+			f = v.Fluid
+		}
 		probe(h, f)
 		if air, ok := f.(thermo.Humid); ok {
 			if carrying, err := air.Carrying(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: 0.5}, 293.15, 100e3); err == nil {

@@ -23,7 +23,7 @@ func tabulate(s *site.Site, to []loads.Load) {
 	}{{water.Liquid(), usualWater}, {water.Steam(), usualSteam}} {
 		boxes := make(map[int]box)
 		for i := range s.Loads {
-			if s.Loads[i].Stream.Fluid == w.fluid {
+			if on(&s.Loads[i], w.fluid) {
 				b := seenBy(s, &s.Loads[i], w.usual)
 				all, ok := boxes[b.order()]
 				if !ok {
@@ -37,13 +37,17 @@ func tabulate(s *site.Site, to []loads.Load) {
 			tables[order] = water.Tabulate(w.fluid, b.T.lo-slackT, b.T.hi+slackT, b.p.lo/slackP, b.p.hi*slackP)
 		}
 		for i := range s.Loads {
-			if s.Loads[i].Stream.Fluid == w.fluid {
+			if on(&s.Loads[i], w.fluid) {
 				b := seenBy(s, &s.Loads[i], w.usual)
 				to[i].Stream.Fluid = tables[b.order()]
 			}
 		}
 	}
 }
+
+// on tells whether the load is a stream of the fluid. A vessel is worked once a reading,
+// and needs no table.
+func on(l *site.HeatLoad, f thermo.Fluid) bool { return l.Stream != nil && l.Stream.Fluid == f }
 
 // order is that of the highest pressure, as a power of ten.
 func (b box) order() int { return int(math.Floor(math.Log10(b.p.hi))) }
@@ -80,7 +84,7 @@ var (
 // design. Where the design tells both temperatures, or the pressure, that is what it
 // sees, give or take 60 K, and half the pressure.
 func seenBy(s *site.Site, l *site.HeatLoad, usual box) box {
-	limits, x, d := l.Stream.Fluid.Bounds(), &l.Stream, &l.Design
+	limits, x, d := l.Stream.Fluid.Bounds(), l.Stream, &l.Design
 	b := box{nothing, nothing}
 	T, p := span{limits.MinT, limits.MaxT}, span{limits.MinP, limits.MaxP}
 	for _, src := range [...]site.Source{x.Inlet, x.Outlet, known(d.Inlet), known(d.Outlet)} {

@@ -98,6 +98,9 @@ func knownLoads() string {
 // designed checks that the site tells the design point, which the day is drawn
 // around.
 func (c *circuit) designed() error {
+	if c.Stream == nil {
+		return fmt.Errorf("the invented plant needs a stream, not a vessel")
+	}
 	d, st := c.Design, c.Stream
 	_, _, err := c.pressures()
 	switch {

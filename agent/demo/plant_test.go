@@ -57,7 +57,7 @@ type measured struct{ value, bound [5]float64 }
 
 func read(s *site.Site, l *site.HeatLoad, samples []Sample) measured {
 	var m measured
-	st := &l.Stream
+	st := l.Stream
 	for i, src := range []site.Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure} {
 		m.value[i] = src.Value
 		if src.Constant() {

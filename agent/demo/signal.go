@@ -63,7 +63,7 @@ func wire(s *site.Site, circuits []circuit, seed uint64) ([]signal, error) {
 
 // tags are the circuit's transmitters with their tags.
 func (c *circuit) tags() map[part]int {
-	s := &c.Stream
+	s := c.Stream
 	tags := make(map[part]int)
 	for i, src := range [...]site.Source{partFlow: s.Flow, partInlet: s.Inlet, partOutlet: s.Outlet, partPressure: s.Pressure, partOutletPressure: s.OutletPressure} {
 		if !src.Constant() {

@@ -50,7 +50,7 @@ func (r *reader) checkDesignPoint(stream, design object, l HeatLoad) {
 
 // checkHumidity holds a constant humidity to the air that it is of, where that is known.
 func checkHumidity(stream object, l HeatLoad, p float64) {
-	s, T := l.Stream, max(l.Design.Inlet, l.Stream.Inlet.Value)
+	s, T := *l.Stream, max(l.Design.Inlet, l.Stream.Inlet.Value)
 	humid, ok := s.Fluid.(thermo.Humid)
 	if !ok || !s.Humidity.Constant() || s.Humidity.Value == 0 || T == 0 || p == 0 {
 		return

@@ -13,11 +13,12 @@ import (
 // order, or with faults that each have a place and one line of text.
 func FuzzParse(f *testing.F) {
 	f.Add([]byte(plant))
-	files, err := filepath.Glob("testdata/wrong/*.yaml")
-	if err != nil || len(files) == 0 {
-		f.Fatalf("no seeds: %v", err)
+	wrong, err := filepath.Glob("testdata/wrong/*.yaml")
+	right, err2 := filepath.Glob("../../configs/*.yaml")
+	if err != nil || err2 != nil || len(wrong) == 0 || len(right) == 0 {
+		f.Fatalf("no seeds: %v, %v", err, err2)
 	}
-	for _, path := range files {
+	for _, path := range append(wrong, right...) {
 		text, err := os.ReadFile(path)
 		if err != nil {
 			f.Fatal(err)
@@ -50,27 +51,51 @@ func checkFigures(t *testing.T, s *Site) {
 	figures := []float64{s.Barometer}
 	for _, tag := range s.Tags {
 		a := tag.Accuracy
-		figures = append(figures, tag.Scale, tag.Offset, a.Abs, a.Rel, a.Zero)
-		if !(tag.Min < tag.Max) || tag.Topic == "" || a.Abs+a.Rel <= 0 || tag.MaxAge <= 0 {
+		figures = append(figures, tag.Scale, tag.Offset, a.Abs, a.Rel, a.Zero, tag.Resolution, tag.Deadband)
+		if c := tag.Counter; c != nil {
+			figures = append(figures, c.Modulus, c.Largest)
+		}
+		if !(tag.Min < tag.Max) || tag.Topic == "" || a.Abs+a.Rel <= 0 && tag.Liveness == nil || tag.MaxAge <= 0 || tag.Scale <= 0 ||
+			tag.OnChange && s.Tags[tag.Alive].Liveness == nil {
 			t.Errorf("tag %+v", tag)
 		}
 	}
-	for _, l := range s.Loads {
-		st, d := l.Stream, l.Design
-		if st.Fluid == nil || st.FlowKind == 0 || d.Lasting <= 0 {
-			t.Errorf("load %+v", l)
-		}
-		figures = append(figures, st.Margin, st.IdleBelow, d.Duty, d.Allow, d.Inlet, d.Outlet, d.Pressure)
-		for _, source := range []Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure, st.Humidity, st.Coil} {
-			figures = append(figures, source.Value)
-			if source.Tag >= len(s.Tags) || source.Constant() && source.Value <= 0 && source != nowhere {
-				t.Errorf("load %q: source %+v", l.Name, source)
-			}
-		}
+	for i := range s.Loads {
+		figures = append(figures, checkLoad(t, s, &s.Loads[i])...)
 	}
 	for _, x := range figures {
 		if math.IsNaN(x) || math.IsInf(x, 0) {
 			t.Errorf("figure %v in %+v", x, s)
 		}
 	}
+}
+
+// checkLoad returns the figures of a load.
+func checkLoad(t *testing.T, s *Site, l *HeatLoad) []float64 {
+	t.Helper()
+	d := l.Design
+	name, fluid := l.Fluid()
+	if name == "" || fluid == nil || d.Lasting <= 0 || (l.Stream == nil) == (l.Vessel == nil) {
+		t.Errorf("load %+v", l)
+	}
+	figures := []float64{d.Duty, d.Allow, d.Inlet, d.Outlet, d.Pressure}
+	if st := l.Stream; st != nil {
+		figures = append(figures, st.Margin, st.IdleBelow, st.Pair, st.Hold, st.Stored)
+		if st.FlowKind == 0 || st.Stored > 0 && st.StoredOver <= 0 {
+			t.Errorf("stream %+v", st)
+		}
+	}
+	if v := l.Vessel; v != nil {
+		figures = append(figures, v.Margin, v.IdleBelow, v.Shell, v.Still)
+		if v.Over <= 0 || v.ContentKind == 0 || v.Temperature.Constant() {
+			t.Errorf("vessel %+v", v)
+		}
+	}
+	for _, source := range l.Sources() {
+		figures = append(figures, source.Value)
+		if source.Tag >= s.Declared() || source.Constant() && source.Value <= 0 && source != nowhere {
+			t.Errorf("load %q: source %+v", l.Name, source)
+		}
+	}
+	return figures
 }

@@ -25,27 +25,44 @@ func (r *reader) readLoads(o object) {
 
 func (r *reader) load(e entry) HeatLoad {
 	o := e.object("loads.*")
-	l := HeatLoad{Name: e.name, Design: Design{Lasting: 10 * time.Minute}}
-	var stream, design object
-	if v, ok := o.need("stream", "the fluid with its flow, temperatures and pressure"); ok {
-		stream = v.object("loads.*.stream")
-		l.Stream = r.stream(stream)
-	}
+	l := HeatLoad{Name: e.name, Witness: nowhere, Design: Design{Lasting: 10 * time.Minute}}
+	var design object
 	if v, ok := o.get("design"); ok {
 		design = v.object("loads.*.design")
 		r.design(design, &l.Design)
 	}
-	r.checkDesignPoint(stream, design, l)
+	if v, ok := o.get("witness"); ok {
+		l.Witness, _ = r.sourceAt(v, theWitness)
+		l.HasWitness = true
+	}
+	stream, isStream := o.get("stream")
+	vessel, isVessel := o.get("vessel")
+	switch {
+	case isStream && isVessel:
+		vessel.fault("stands beside stream; a load is the one or the other")
+	case isVessel:
+		l.Vessel = r.vessel(vessel.object("loads.*.vessel"))
+		design.ofVessel()
+	case isStream:
+		of := stream.object("loads.*.stream")
+		l.Stream = r.stream(of, &l.Design)
+		r.checkDesignPoint(of, design, l)
+	default:
+		o.need("stream", "the fluid with its flow, temperatures and pressure; or vessel, a closed content", "vessel")
+	}
 	return l
 }
 
-func (r *reader) stream(o object) Stream {
-	s := Stream{Humidity: nowhere, Coil: nowhere}
+func (r *reader) stream(o object, d *Design) *Stream {
+	s := &Stream{Humidity: nowhere, Coil: nowhere, Corrections: Corrections{Pump: nowhere}}
 	if v, ok := o.need("fluid", "a declared fluid, or a built-in one such as water or dry air"); ok {
 		s.FluidName, s.Fluid = r.fluid(v)
 	}
 	s.Margin = DefaultMargin(s.Fluid)
-	s.Flow, s.FlowKind = r.needSource(o, "flow", "a tag or a constant such as 12 m3/h", flows...)
+	s.Flow = nowhere
+	if v, ok := o.need("flow", "a tag or a constant such as 12 m3/h"); ok {
+		s.Flow, s.FlowKind = r.sourceAt(v, theFlow)
+	}
 	s.Inlet, _ = r.needSource(o, "inlet", "a tag or a constant such as 130 °C", unit.Temperature)
 	s.Outlet, _ = r.needSource(o, "outlet", "a tag or a constant such as 90 °C", unit.Temperature)
 	s.Pressure, _ = r.needSource(o, "pressure", "a tag, or a constant such as 3 barg may stand", unit.Pressure)
@@ -53,9 +70,9 @@ func (r *reader) stream(o object) Stream {
 	if v, ok := o.get("outlet_pressure"); ok {
 		s.OutletPressure, _ = r.source(v, unit.Pressure)
 	}
-	o.service(&s)
-	o.meter(&s)
-	r.moisture(o, &s)
+	s.Gives = o.service("stream", "heat (a heating circuit)", "heat (a chilled circuit, a heated product)")
+	o.meter(s)
+	r.moisture(o, s)
 	if v, ok := o.get("margin"); ok {
 		s.Margin, _ = v.within(0, 100, "0 K to 100 K", unit.TemperatureDifference)
 	}
@@ -64,15 +81,29 @@ func (r *reader) stream(o object) Stream {
 	} else if !s.Flow.Constant() && s.FlowKind != 0 {
 		s.IdleBelow = r.site.Tags[s.Flow.Tag].zero()
 	}
+	o.pair(s)
+	r.corrections(o, s, d)
 	o.checkStream(s)
 	return s
+}
+
+// pair reads how far the errors of the two thermometers are the same.
+func (o object) pair(s *Stream) {
+	v, ok := o.get("pair")
+	if !ok {
+		return
+	}
+	s.Pair = v.bareWithin(0, 1)
+	if s.Inlet.Constant() || s.Outlet.Constant() {
+		v.fault("is about two thermometers, and inlet and outlet are not both tags")
+	}
 }
 
 // zeroOfRange is the part of a flow meter's range at or below which nothing is taken
 // to flow, unless the load says: common practice, no source.
 const zeroOfRange = 0.005
 
-// zero is how far from zero, SI, a flow tag may read while nothing flows: half a
+// zero is how far from zero, SI, a flow tag, or the rate of a counter, may read while nothing flows: half a
 // percent of its range, or the part of its accuracy that does not depend on the
 // reading, whichever is more; 0 where it has neither.
 func (t Tag) zero() float64 {
@@ -82,21 +113,23 @@ func (t Tag) zero() float64 {
 	return t.Accuracy.Abs
 }
 
-// service reads which way the load serves.
-func (o object) service(s *Stream) {
+// service reads which way the load serves, true where it gives heat. What names it, and
+// the examples stand in the fault of one that tells none.
+func (o object) service(what, giving, taking string) bool {
 	gives, isGiven := o.get("gives")
 	takes, isTaken := o.get("takes")
 	switch {
 	case isGiven && isTaken:
-		takes.fault("stands beside gives; a stream gives heat or takes it")
+		takes.fault("stands beside gives; a %s gives heat or takes it", what)
 	case isGiven:
 		gives.oneOf("heat")
-		s.Gives = true
+		return true
 	case isTaken:
 		takes.oneOf("heat")
 	case o.node.Kind == yaml.MappingNode && !o.misspelt([]string{"gives", "takes"}):
-		o.fault("wants gives: heat (a heating circuit) or takes: heat (a chilled circuit, a heated product)")
+		o.fault("wants gives: %s or takes: %s", giving, taking)
 	}
+	return isGiven
 }
 
 // meter reads where a volume flow is metered, which decides the density.
@@ -112,7 +145,7 @@ func (o object) meter(s *Stream) {
 }
 
 // checkStream looks at what does not go together.
-func (o object) checkStream(s Stream) {
+func (o object) checkStream(s *Stream) {
 	if flow, ok := o.get("flow"); ok && s.Fluid != nil && s.FlowKind != 0 {
 		if err := FlowSuits(s.Fluid, s.FlowKind); err != nil {
 			flow.fault("%v", err)
@@ -173,5 +206,14 @@ func (r *reader) design(o object, d *Design) {
 	}
 	if v, ok := o.get("pressure"); ok {
 		d.Pressure = r.constant(v, unit.Pressure)
+	}
+}
+
+// ofVessel refuses what the design of a vessel has no use for.
+func (o object) ofVessel() {
+	for _, key := range []string{"inlet", "outlet", "pressure"} {
+		if v, ok := o.get(key); ok {
+			v.fault("is of a stream; the design of a vessel has duty, allow and lasting")
+		}
 	}
 }

@@ -18,6 +18,8 @@ var otherwise = map[string][]string{
 	"fiber": {"fibre"}, "minerals": {"ash"}, "salt": {"ash", "sodium chloride"}, "solids": {"carbohydrate"}, "api": {"api gravity"}, "rho": {"density"}, "kw": {"watson"},
 	"watson k": {"watson"}, "watson factor": {"watson"}, "glycol": {"ethylene glycol", "propylene glycol"}, "meg": {"ethylene glycol"}, "mpg": {"propylene glycol"},
 	"oil": {"petroleum", "table"}, "brine": {"sodium chloride", "calcium chloride", "seawater"}, "milk": {"food"},
+	"rolls over": {"rolls_over_at"}, "roll over": {"rolls_over_at"}, "rollover": {"rolls_over_at"}, "modulus": {"rolls_over_at"}, "max rate": {"largest"}, "heartbeat": {"alive", "topic"},
+	"counter": {"counts"}, "timeout": {"within"}, "mass": {"content"}, "volume": {"content"}, "level": {"content"}, "wall": {"shell"}, "meter": {"witness", "meter_at"},
 }
 
 // meant are the keys that one that is unknown was probably to be.

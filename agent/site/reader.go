@@ -14,6 +14,7 @@ type reader struct {
 	site   *Site
 	file   string
 	tags   map[string]int          // declared names to the index in site.Tags
+	told   []told                  // topics that tell whether sources are alive
 	fluids map[string]thermo.Fluid // nil where the declaration is at fault
 	gauge  bool                    // the file has a gauge pressure
 }

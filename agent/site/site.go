@@ -7,7 +7,7 @@
 // what is allowed. Nothing is defaulted without being described here, and
 // nothing is dropped.
 //
-// A stream's fluid is one that the file declares, by one of the kinds that [Keys] lists
+// A load's fluid is one that the file declares, by one of the kinds that [Keys] lists
 // under "fluids.*", or any that package named knows. [ParseFluid] reads one by itself.
 //
 // A quantity is written with its unit and read by package unit. A gauge pressure
@@ -31,10 +31,21 @@ type Site struct {
 	Barometer float64        // Pa; 0 when the file gives none, and then it has no gauge pressure
 	Broker    Broker
 	Fluids    map[string]thermo.Fluid // the declared ones
-	Tags      []Tag                   // in file order
+	Tags      []Tag                   // in file order, and behind them those of [Liveness]
 	Loads     []HeatLoad              // in file order
 	Timing    Timing
 	History   History
+}
+
+// Declared is how many of the tags the file declares; those behind them tell whether a
+// source is alive.
+func (s *Site) Declared() int {
+	for i := range s.Tags {
+		if s.Tags[i].Liveness != nil {
+			return i
+		}
+	}
+	return len(s.Tags)
 }
 
 // Tag is one signal on the broker.
@@ -50,6 +61,33 @@ type Tag struct {
 	MaxAge        time.Duration // how long a reading is held; default 60 s
 	Min, Max      float64       // instrument range, SI, absolute; when absent what no plant has
 	QoS           byte          // always 1: each reading is acknowledged when it is on disk
+
+	// Resolution is the step of the tag's numbers, and Deadband how far the quantity may
+	// move before its source tells of it; SI, 0 where the file gives none.
+	Resolution, Deadband float64
+	Counter              *Counter // the tag is a register that only counts up; its Accuracy is of the rate
+	// OnChange says that the source reports by exception, and a reading holds as long as
+	// the source is alive, which the tag at the index Alive of Site.Tags tells.
+	OnChange bool
+	Alive    int
+	// Liveness is set of a tag that no load may choose: it stands behind those that the
+	// file declares, under the name of its topic, one for each such topic.
+	Liveness *Liveness
+}
+
+// Counter is a register that only counts up, in the SI unit of its tag: m³, kg, mol or J.
+type Counter struct {
+	Modulus float64 // where it begins again at zero; 0 when the file gives none
+	Largest float64 // the rate, a second, above which a difference is a fault; 0 when the file gives none
+}
+
+// Liveness is how a topic tells whether a source is alive: by a heartbeat of any payload,
+// or by two words.
+type Liveness struct {
+	Online, Offline string // "" of a heartbeat
+	// Kept says that a message which the broker kept counts, since the last word holds
+	// until the next.
+	Kept bool
 }
 
 // Accuracy is the half-width of what an instrument may be off, in SI at the SI
@@ -66,12 +104,37 @@ func (a Accuracy) HalfWidth(x float64) float64 {
 	return a.Abs + a.Rel*d
 }
 
-// HeatLoad is one heat load: a stream with its inlet and outlet, and what it was
-// designed for.
+// HeatLoad is one heat load, a stream or a vessel, and what it was designed for.
 type HeatLoad struct {
-	Name   string
-	Stream Stream
-	Design Design
+	Name       string
+	Stream     *Stream // nil of a vessel
+	Vessel     *Vessel // nil of a stream
+	Witness    Source  // the energy counter of a heat meter in the same circuit; only with HasWitness
+	HasWitness bool
+	Design     Design
+}
+
+// Fluid is what the load is computed with, and its name in the file.
+func (l *HeatLoad) Fluid() (string, thermo.Fluid) {
+	if l.Vessel != nil {
+		return l.Vessel.FluidName, l.Vessel.Fluid
+	}
+	return l.Stream.FluidName, l.Stream.Fluid
+}
+
+// Sources are all tags and constants that the load reads, its witness too.
+func (l *HeatLoad) Sources() []Source {
+	var all []Source
+	if v := l.Vessel; v != nil {
+		all = append(all, v.Temperature, v.Pressure, v.Content)
+	} else {
+		s := l.Stream
+		all = append(all, s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure, s.Humidity, s.Coil, s.Pump)
+	}
+	if l.HasWitness {
+		all = append(all, l.Witness)
+	}
+	return all
 }
 
 // Source is where a figure comes from: a tag, or a constant of the file.
@@ -88,7 +151,7 @@ type Stream struct {
 	FluidName                string
 	Fluid                    thermo.Fluid
 	Flow                     Source
-	FlowKind                 unit.Dimension // MassFlow, VolumeFlow or MolarFlow
+	FlowKind                 unit.Dimension // MassFlow, VolumeFlow or MolarFlow, also of a counter
 	Inlet, Outlet            Source         // K
 	Pressure, OutletPressure Source         // Pa; the outlet's is the inlet's when not given
 	MeterAtOutlet            bool           // where a volume flow is metered
@@ -101,6 +164,34 @@ type Stream struct {
 	HumidityKind thermo.MoistureKind
 	Coil         Source // K, the coldest surface that a moist gas meets; only with HasCoil
 	HasCoil      bool
+	Pair         float64 // correlation of the errors of inlet and outlet, 0 to 1; default 0
+	Corrections
+}
+
+// Corrections are what the duty of a stream is corrected for.
+type Corrections struct {
+	Pump       Source // W, heat of a pump or fan between the thermometers; only with HasPump
+	HasPump    bool
+	Hold       float64       // m³ between the thermometers, which the fluid passes in plug flow; 0 for none
+	Stored     float64       // J/K, heat capacity of what lies between them; 0 for none
+	StoredOver time.Duration // span over which its rise is told; default 5 min
+}
+
+// Vessel is a closed content whose temperature tells its heat.
+type Vessel struct {
+	FluidName   string
+	Fluid       thermo.Fluid
+	Temperature Source // K, a tag
+	Pressure    Source // Pa
+	Rigid       bool   // a gas that keeps its volume; else the vessel keeps its pressure
+	Content     Source
+	ContentKind unit.Dimension // Mass or Volume
+	Shell       float64        // J/K, heat capacity of the wall; default 0
+	Over        time.Duration  // span through which the rate is fitted; default 10 min
+	Still       float64        // fraction by which the content may change over it; default 1 %
+	Gives       bool           // gives heat; else it takes heat
+	IdleBelow   float64        // W; default 0
+	Margin      float64        // K to saturation, as of a stream
 }
 
 // Design is what a load should move.
@@ -119,6 +210,7 @@ type Timing struct {
 	Ahead    time.Duration // stamps further in the future are refused; default 30 s
 	Commit   time.Duration // between two writes to disk; default 10 s
 	Beat     time.Duration // 1 s
+	Bridge   time.Duration // longest time without data that is filled by a straight line; default 0, for none
 }
 
 // History bounds what is kept on disk.

@@ -49,7 +49,7 @@ func TestParse(t *testing.T) {
 	if s.Broker != want {
 		t.Errorf("broker = %+v, want %+v", s.Broker, want)
 	}
-	if s.Timing != (Timing{time.Second, 5 * time.Second, 30 * time.Second, 10 * time.Second, time.Second}) {
+	if s.Timing != (Timing{time.Second, 5 * time.Second, 30 * time.Second, 10 * time.Second, time.Second, 0}) {
 		t.Errorf("timing without a block = %+v", s.Timing)
 	}
 	if s.History != (History{730 * 24 * time.Hour, 256 << 20}) {

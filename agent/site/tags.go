@@ -9,8 +9,9 @@ import (
 	"heatreeve/thermo/unit"
 )
 
-// measured are the dimensions that a load can use.
-var measured = []unit.Dimension{unit.Temperature, unit.Pressure, unit.MassFlow, unit.VolumeFlow, unit.MolarFlow, unit.Ratio}
+// measured are the dimensions that a load can use, those of counters at the end.
+var measured = []unit.Dimension{unit.Temperature, unit.Pressure, unit.MassFlow, unit.VolumeFlow, unit.MolarFlow, unit.Ratio, unit.Power,
+	unit.Mass, unit.Volume, unit.Amount, unit.Energy, unit.Count}
 
 // readTags reads every tag, and gives a tag at fault its place too, so that loads
 // that name it are not reported as well.
@@ -24,7 +25,7 @@ func (r *reader) readTags(o object) {
 		v.emptyMapping("at least one tag")
 	}
 	r.tags = make(map[string]int, len(es))
-	sources := make(map[[2]string]string, len(es))
+	sources := make(map[[2]string]string, len(es)) // topic and value
 	for _, e := range es {
 		if e.key.label(e.name) {
 			e.key.noQuantity(e.name)
@@ -39,6 +40,7 @@ func (r *reader) readTags(o object) {
 		}
 		sources[source] = e.name
 	}
+	r.appendLiveness(sources)
 }
 
 // noQuantity refuses a tag's name that a load would read as a constant.
@@ -56,10 +58,15 @@ func (r *reader) tag(e entry) Tag {
 	}
 	u, ok := o.need("unit", "the unit of the numbers in the payload, such as °C, m3/h, barg")
 	known := ok && r.tagUnit(u, &t)
-	if v, ok := o.need("accuracy", accuracyForms); ok && known {
-		t.Accuracy = r.accuracy(v, t.Unit, t.Offset)
+	if v, ok := o.get("counts"); ok {
+		known = r.counter(o, v, &t, known) && known
+	} else if known {
+		known = u.needNoCounter(&t)
 	}
-	if v, ok := o.get("range"); ok && known {
+	if v, ok := o.need("accuracy", accuracyForms); ok && known {
+		t.Accuracy = r.accuracy(v, t.unitOfError(), t.Offset)
+	}
+	if v, ok := o.get("range"); ok && known && t.Counter == nil {
 		if lo, hi, ok := r.span(v, t.Unit); ok {
 			t.Min, t.Max = lo, hi
 		}
@@ -69,7 +76,20 @@ func (r *reader) tag(e entry) Tag {
 		e.fault("max_age %v is shorter than the grid of %v", t.MaxAge, r.site.Timing.Grid)
 	}
 	o.payload(&t)
+	if known {
+		o.steps(&t)
+		o.checkCounter(&t, r.site.Timing.Grid)
+	}
+	r.reports(o, &t)
 	return t
+}
+
+// unitOfError is the unit that the accuracy of a tag is in: that of a counter is of its
+// rate.
+func (t *Tag) unitOfError() unit.Unit {
+	u := t.Unit
+	u.Dimension = t.rate()
+	return u
 }
 
 // tagUnit reads the unit and how it leads to SI.
@@ -87,38 +107,42 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 	if u.Gauge {
 		t.Offset, r.gauge = r.site.Barometer, true
 	}
-	switch largest, isFlow := largestFlow[u.Dimension]; {
-	case isFlow:
-		t.Min, t.Max = -largest, largest
-	case u.Dimension == unit.Temperature:
-		t.Min, t.Max = 0, hottest
-	case u.Dimension == unit.Ratio:
-		t.Min, t.Max = 0, 1.02
-	default:
-		t.Min, t.Max = 0, strongest
+	t.Min, t.Max = 0, largest[u.Dimension]
+	if _, isFlow := largestFlow[u.Dimension]; isFlow || u.Dimension == unit.Power {
+		t.Min = -t.Max // a little below zero while there is none
 	}
 	return true
 }
 
-// What a tag without a range may read, SI: temperatures from absolute zero, absolute
-// pressures from a vacuum, up to what no instrument of a plant shows. A ratio is from
-// 0 % to 102 %, since humidity sensors in saturated air show a little more than 100 %.
-const (
-	hottest   = 5000 // K
-	strongest = 1e9  // Pa
-)
+// largest is what a tag without a range may read, SI: from absolute zero, a vacuum or
+// nothing up to what no instrument of a plant shows, but far below what a transmitter
+// without a signal may send, such as the largest 32-bit float. A ratio is up to 102 %,
+// since humidity sensors in saturated air show a little more than 100 %.
+var largest = map[unit.Dimension]float64{
+	unit.Temperature: 5000, unit.Pressure: 1e9, unit.Ratio: 1.02, unit.Power: 1e11,
+	unit.MassFlow: 1e5, unit.VolumeFlow: 1e5, unit.MolarFlow: 1e7,
+	unit.Mass: 1e15, unit.Volume: 1e12, unit.Amount: 1e16, unit.Energy: 1e21,
+}
 
-// largestFlow bounds a flow tag without a range, SI: beyond any pipe, but far below
-// what a transmitter without a signal may send, such as the largest 32-bit float.
-var largestFlow = map[unit.Dimension]float64{unit.MassFlow: 1e5, unit.VolumeFlow: 1e5, unit.MolarFlow: 1e7}
+// largestFlow are the flows among them.
+var largestFlow = map[unit.Dimension]float64{
+	unit.MassFlow: largest[unit.MassFlow], unit.VolumeFlow: largest[unit.VolumeFlow], unit.MolarFlow: largest[unit.MolarFlow],
+}
 
 // payload reads where in a message the value and its time stand.
 func (o object) payload(t *Tag) {
-	t.Value, t.Time = o.pointer("value"), o.pointer("time")
+	t.Value = o.pointer("value")
 	at, timed := o.get("time")
 	if _, ok := o.get("value"); timed && !ok {
 		at.fault("stands without value; a payload with a time is JSON, so tell where the value is, such as value: /v")
 	}
+	o.stamp(t)
+}
+
+// stamp reads where in a message the time stands, and how it is written.
+func (o object) stamp(t *Tag) {
+	t.Time = o.pointer("time")
+	at, timed := o.get("time")
 	if timed && t.Time != "" && t.Time == t.Value {
 		at.fault("is the same place as value")
 	}

@@ -21,6 +21,7 @@ func (r *reader) timing(o object) {
 	b.setDuration("lateness", &t.Lateness, 0, time.Hour, "0 s to 1 h")
 	b.setDuration("ahead", &t.Ahead, time.Second, time.Hour, "1 s to 1 h")
 	b.setDuration("commit", &t.Commit, time.Second, 10*time.Minute, "1 s to 10 min")
+	b.setDuration("bridge", &t.Bridge, 0, 2*time.Hour, "0 s to 2 h")
 	if v, ok := b.get("grid"); ok && time.Minute%t.Grid != 0 {
 		v.fault("a minute is no whole number of steps of %v; allowed are steps such as 1 s, 2 s, 5 s, 10 s", t.Grid)
 	}

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"os"
+	"strings"
 
 	"heatreeve/agent/site"
 )
@@ -16,14 +17,45 @@ func runCheck(_ context.Context, c *call) error {
 	if err != nil {
 		return err
 	}
-	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.operands[0], s.Name, len(s.Tags), len(s.Loads))
-	for _, l := range s.Loads {
-		fmt.Fprintln(c.stdout, set("  ", "      ", fields(fmt.Sprintf("%s: %s, %s", l.Name, l.Stream.FluidName, l.Stream.Fluid.Source()))))
+	fmt.Fprintf(c.stdout, "%s: good: %q, tags: %d, loads: %d\n", c.operands[0], s.Name, s.Declared(), len(s.Loads))
+	for i := range s.Loads {
+		fmt.Fprintln(c.stdout, set("  ", "      ", fields(described(s, &s.Loads[i]))))
+	}
+	for i, t := range s.Tags[s.Declared():] {
+		fmt.Fprintln(c.stdout, set("  ", "      ", fields(fmt.Sprintf("%s: tells whether %s alive", t.Name, told(s, s.Declared()+i)))))
 	}
 	for _, note := range notes(s) {
 		fmt.Fprintln(c.stdout, wrapped("note: "+note, "  "))
 	}
 	return nil
+}
+
+// described is a load in a line: what it is of, and what else it has.
+func described(s *site.Site, l *site.HeatLoad) string {
+	name, f := l.Fluid()
+	is := name
+	if l.Vessel != nil {
+		is = "vessel of " + name
+	}
+	say := fmt.Sprintf("%s: %s, %s", l.Name, is, f.Source())
+	if l.HasWitness {
+		say += "; compared with " + s.Tags[l.Witness.Tag].Name
+	}
+	return say
+}
+
+// told names the tags whose source the tag i tells of.
+func told(s *site.Site, i int) string {
+	var all []string
+	for _, t := range s.Tags {
+		if t.OnChange && t.Alive == i {
+			all = append(all, t.Name)
+		}
+	}
+	if len(all) == 1 {
+		return "the source of " + all[0] + " is"
+	}
+	return "the sources of " + strings.Join(all, ", ") + " are"
 }
 
 // load reads a site file; whatever is wrong with it is wrong usage, not failure.
@@ -58,16 +90,15 @@ func notes(s *site.Site) []string {
 // idleTags are the tags that no load reads.
 func idleTags(s *site.Site) []string {
 	used := make([]bool, len(s.Tags))
-	for _, l := range s.Loads {
-		st := l.Stream
-		for _, src := range []site.Source{st.Flow, st.Inlet, st.Outlet, st.Pressure, st.OutletPressure, st.Humidity, st.Coil} {
+	for i := range s.Loads {
+		for _, src := range s.Loads[i].Sources() {
 			if !src.Constant() {
 				used[src.Tag] = true
 			}
 		}
 	}
 	var all []string
-	for i, t := range s.Tags {
+	for i, t := range s.Tags[:s.Declared()] {
 		if !used[i] {
 			all = append(all, fmt.Sprintf("tags.%s: no load reads it; its readings are only stored", t.Name))
 		}
