@@ -127,14 +127,20 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 		defer endSession()
 		return a.beats(ctx, books)
 	})
-	g.Go(func() error { return serve(ctx, listener, handler(a.registry(), &a.health, reports, a.o.Log)) })
+	g.Go(func() error {
+		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports))
+	})
 	return g.Wait()
 }
 
+func (a *Agent) collector() *metrics.Collector {
+	return metrics.NewCollector(a.latest.Load, func() int64 { return a.o.Now().UnixNano() })
+}
+
+// registry has what the collector has not.
 func (a *Agent) registry() *prometheus.Registry {
 	reg := prometheus.NewRegistry()
 	reg.MustRegister(
-		metrics.NewCollector(a.latest.Load, func() int64 { return a.o.Now().UnixNano() }),
 		metrics.BuildInfo(a.o.Version),
 		a.commits,
 		collectors.NewGoCollector(),

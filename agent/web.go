@@ -15,6 +15,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
 
+	"heatreeve/agent/metrics"
 	"heatreeve/agent/view"
 )
 
@@ -24,15 +25,9 @@ no billing meter. Site codes, the plant's own protection and licensed people
 come first.`
 
 // handler serves the metrics, the two answers that supervisors ask for, reports and exports.
-func handler(reg *prometheus.Registry, health *health, reports *reports, log *slog.Logger) http.Handler {
+func handler(metrics http.Handler, health *health, reports *reports) http.Handler {
 	mux := http.NewServeMux()
-	mux.Handle("GET /metrics", promhttp.HandlerFor(reg, promhttp.HandlerOpts{
-		Registry:            reg,
-		ErrorLog:            slog.NewLogLogger(log.Handler(), slog.LevelError),
-		ErrorHandling:       promhttp.ContinueOnError,
-		MaxRequestsInFlight: 3,
-		Timeout:             8 * time.Second,
-	}))
+	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", answer(health.alive))
 	mux.HandleFunc("GET /readyz", answer(health.ready))
 	mux.Handle("GET "+reportPath, reports)
@@ -42,6 +37,17 @@ func handler(reg *prometheus.Registry, health *health, reports *reports, log *sl
 		front(w, health.latest.Load(), health.now())
 	})
 	return mux
+}
+
+// metricsHandler serves the loads and tags, and what the registry has of the agent itself.
+func metricsHandler(reg *prometheus.Registry, c *metrics.Collector, log *slog.Logger) http.Handler {
+	return promhttp.HandlerFor(c.Beside(reg), promhttp.HandlerOpts{
+		Registry:            reg,
+		ErrorLog:            slog.NewLogLogger(log.Handler(), slog.LevelError),
+		ErrorHandling:       promhttp.ContinueOnError,
+		MaxRequestsInFlight: 3,
+		Timeout:             8 * time.Second,
+	})
 }
 
 // front is the page at /: the loads with what is wrong or remarkable with them, and where the

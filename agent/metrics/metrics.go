@@ -1,13 +1,17 @@
 // Package metrics exposes the agent's latest snapshot to Prometheus: one
-// collector, const metrics, no lock. Base units throughout: watts, joules,
+// collector, no lock, and no more work than a scrape's text takes. Base units throughout: watts, joules,
 // seconds, degrees Celsius, and kilograms per second, which the trade uses and
 // the naming rules do not know.
 package metrics
 
 import (
+	"errors"
 	"math"
+	"slices"
+	"strings"
 
 	"github.com/prometheus/client_golang/prometheus"
+	dto "github.com/prometheus/client_model/go"
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
@@ -16,10 +20,6 @@ import (
 
 // windowNames are the label values of [loads.Windows].
 var windowNames = [len(loads.Windows)]string{"1m", "15m", "1h"}
-
-func desc(name, help string, labels ...string) *prometheus.Desc {
-	return prometheus.NewDesc("heatreeve_"+name, help, labels, nil)
-}
 
 var (
 	duty        = desc("load_duty_watts", "Heat duty at the last beat, positive in the load's own service; absent while the load is blind.", "load")
@@ -72,21 +72,22 @@ func NewCollector(latest func() *view.Snapshot, now func() int64) *Collector {
 	return &Collector{latest: latest, now: now}
 }
 
-// Describe sends every description, so that a clash of names is found at start.
+// Describe sends every description.
 func (c *Collector) Describe(ch chan<- *prometheus.Desc) {
-	for _, d := range []*prometheus.Desc{duty, uncertainty, random, dutyMean, coverage, heat, bridgedHeat, spent, latent, massFlow, inlet, outlet, content, expected, verdict,
-		reading, readings, refused, refusals, late, repeated, eventTime, connected, topics, losses, unknown, waiting, bytes, fileBytes, writable, failures, lost, lostMins} {
-		ch <- d
+	for _, f := range families {
+		ch <- f.Desc
 	}
 }
 
-// Collect sends the series of the latest snapshot.
-func (c *Collector) Collect(ch chan<- prometheus.Metric) {
+// Gather returns the series of the latest snapshot, by metric, in the order of the site. It
+// does not look for clashes as a registry does at each scrape: names of metrics are constants
+// and held apart by a test, those of loads and tags by the site file.
+func (c *Collector) Gather() ([]*dto.MetricFamily, error) {
 	s := c.latest()
 	if s == nil {
-		return
+		return nil, nil
 	}
-	out := sink{ch}
+	out := newSink()
 	now := c.now()
 	for i := range s.Loads {
 		figure, v := s.Current(i, now)
@@ -99,21 +100,24 @@ func (c *Collector) Collect(ch chan<- prometheus.Metric) {
 	}
 	out.refusals(s.Tags)
 	out.agent(s)
+	return slices.DeleteFunc(out.gathered, func(f *dto.MetricFamily) bool { return f == nil }), nil
 }
 
-type sink struct{ ch chan<- prometheus.Metric }
-
-func (o sink) gauge(d *prometheus.Desc, v float64, labels ...string) {
-	o.ch <- prometheus.MustNewConstMetric(d, prometheus.GaugeValue, v, labels...)
-}
-
-func (o sink) counter(d *prometheus.Desc, v float64, labels ...string) {
-	o.ch <- prometheus.MustNewConstMetric(d, prometheus.CounterValue, v, labels...)
+// Beside returns a gatherer of what another one gathers and of the collector's series, sorted
+// by the names of the metrics, of which they must have none in common.
+func (c *Collector) Beside(other prometheus.Gatherer) prometheus.Gatherer {
+	return prometheus.GathererFunc(func() ([]*dto.MetricFamily, error) {
+		all, err := other.Gather()
+		ours, errOurs := c.Gather()
+		all = append(all, ours...)
+		slices.SortFunc(all, func(a, b *dto.MetricFamily) int { return strings.Compare(a.GetName(), b.GetName()) })
+		return all, errors.Join(err, errOurs)
+	})
 }
 
 // figure leaves out what there is none of: a value that is not trusted is absent,
 // never zero.
-func (o sink) figure(name string, f *loads.Figure) {
+func (o *sink) figure(name string, f *loads.Figure) {
 	if !f.Measured() {
 		return
 	}
@@ -133,7 +137,7 @@ func (o sink) figure(name string, f *loads.Figure) {
 	o.gauge(outlet, celsius(f.Outlet), name)
 }
 
-func (o sink) load(l *view.Load, now design.Verdict) {
+func (o *sink) load(l *view.Load, now design.Verdict) {
 	o.counter(heat, l.Booked.Given, l.Name, "given")
 	o.counter(heat, l.Booked.Taken, l.Name, "taken")
 	o.counter(bridgedHeat, l.Booked.BridgedGiven, l.Name, "given")
@@ -149,7 +153,7 @@ func (o sink) load(l *view.Load, now design.Verdict) {
 	}
 }
 
-func (o sink) means(s *view.Snapshot, i int, now int64) {
+func (o *sink) means(s *view.Snapshot, i int, now int64) {
 	name := s.Loads[i].Name
 	for k := range s.Loads[i].Means {
 		m := s.Mean(i, k, now)
@@ -160,7 +164,7 @@ func (o sink) means(s *view.Snapshot, i int, now int64) {
 	}
 }
 
-func (o sink) tag(t *view.Tag) {
+func (o *sink) tag(t *view.Tag) {
 	if t.Newest != 0 {
 		o.gauge(reading, seconds(t.Newest), t.Name)
 	}
@@ -175,7 +179,7 @@ func (o sink) tag(t *view.Tag) {
 }
 
 // refusals adds up over the tags, so that every reason has a series from the start.
-func (o sink) refusals(tags []view.Tag) {
+func (o *sink) refusals(tags []view.Tag) {
 	if len(tags) == 0 {
 		return
 	}
@@ -188,7 +192,7 @@ func (o sink) refusals(tags []view.Tag) {
 	}
 }
 
-func (o sink) agent(s *view.Snapshot) {
+func (o *sink) agent(s *view.Snapshot) {
 	if s.At != 0 {
 		o.gauge(eventTime, seconds(s.At))
 	}
