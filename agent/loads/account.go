@@ -7,9 +7,11 @@ type loadState struct {
 	Windows   [len(Windows)]Window
 	Minute    minuteSum
 	Gap       gap
+	Counted   *counted // nil where the flow is a rate
 	terms     terms
-	figure    Figure
+	figure    Figure   // at one unit of flow a second where it is counted
 	fresh     bool     // figure was worked from the values held now
+	counting  bool     // the counter of the flow is alive
 	closed    []Minute // not yet handed over
 }
 
@@ -18,11 +20,17 @@ type terms struct {
 	load         int // index into [Config.Loads]
 	grid, bridge int64
 	gives        bool
+	counter      int     // tag that counts the flow; -1 where it is a rate
+	step         float64 // of the counter's numbers
 }
 
 // newLoad returns the empty accounts of a load.
 func newLoad(cfg *Config, load int) loadState {
-	l := loadState{terms: terms{load: load, grid: cfg.Grid, bridge: cfg.Bridge, gives: cfg.Loads[load].gives()}}
+	l := loadState{terms: terms{load: load, grid: cfg.Grid, bridge: cfg.Bridge, gives: cfg.Loads[load].gives(), counter: -1}}
+	if i := cfg.Loads[load].counter(cfg.Tags); i >= 0 {
+		l.terms.counter, l.terms.step = i, cfg.Tags[i].Resolution
+		l.Counted = new(counted)
+	}
 	for k, length := range Windows {
 		l.Windows[k] = newWindow(length, cfg.Grid)
 	}
@@ -32,6 +40,9 @@ func newLoad(cfg *Config, load int) loadState {
 // resume takes up the accounts that were saved on the same grid.
 func (l *loadState) resume(was loadState) {
 	was.terms = l.terms
+	if was.Counted == nil || l.Counted == nil {
+		was.Counted = l.Counted
+	}
 	for k := range l.Windows {
 		was.Windows[k].parts = l.Windows[k].parts
 	}
@@ -42,14 +53,18 @@ func (l *loadState) resume(was loadState) {
 func (l *loadState) forget() {
 	l.Minute.Begun = false
 	l.Gap = gap{}
+	if l.Counted != nil {
+		l.Counted = new(counted)
+	}
 }
 
-// book accounts for the present figure over [g, g+span). Windows, which are live, know
-// it at once; registers and minutes as soon as it is decided.
+// book accounts for the present figure over [g, g+span): as soon as it is decided.
 func (l *loadState) book(g, span int64) {
 	f := &l.figure
-	l.roll(f, g, span)
 	switch {
+	case l.Counted != nil && !l.counting:
+		l.unheard()
+		l.enterMissing(g, g+span)
 	case f.Measured():
 		if l.Gap.open() {
 			l.bridge(g, f.Duty)
@@ -68,13 +83,18 @@ func (l *loadState) book(g, span int64) {
 
 // undecided returns how much of the time up to through is in no register yet.
 func (l *loadState) undecided(through int64) int64 {
+	from := through
 	if l.Gap.open() {
-		return through - l.from()
+		from = l.from()
 	}
-	return 0
+	if l.Counted != nil && len(l.Counted.Pieces) > 0 {
+		from = min(from, l.Counted.Pieces[0].From)
+	}
+	return through - from
 }
 
-// roll moves the rolling windows on. Their heat is positive in the load's service.
+// roll moves the rolling windows on, by the live figure. Their heat is positive in the
+// load's service.
 func (l *loadState) roll(f *Figure, g, span int64) {
 	var heat float64
 	measured := span
@@ -88,28 +108,72 @@ func (l *loadState) roll(f *Figure, g, span int64) {
 	}
 }
 
+// measured accounts for a figure over [g, g+span).
+func (l *loadState) measured(f *Figure, g, span int64) {
+	if l.Counted != nil {
+		l.Counted.piece(g, span).measure(f, g, span, l.terms.gives)
+		return
+	}
+	l.enter(f, g, span)
+}
+
+// bridged accounts for a duty that a straight line gives over [g, g+span).
+func (l *loadState) bridged(duty float64, g, span int64) {
+	heat := givenUp(duty*(float64(span)/1e9), l.terms.gives)
+	if l.Counted == nil {
+		l.enterBridged(heat, g, span)
+		return
+	}
+	if c, ok := l.Counted.at(g); ok {
+		p := piece{From: g, To: g + span}
+		p.Sum.bridge(heat, g, span)
+		l.settle(&p, &c)
+		return
+	}
+	l.Counted.piece(g, span).bridge(heat, g, span)
+}
+
+// missing accounts for [from, to) as time without a figure.
+func (l *loadState) missing(from, to int64) {
+	if l.Counted == nil {
+		l.enterMissing(from, to)
+		return
+	}
+	for from < to {
+		end := min(to, floor(from, minute)+minute)
+		if c, ok := l.Counted.at(from); ok {
+			end = min(end, c.To)
+			p := piece{From: from, To: end}
+			p.Sum.miss(from, end-from)
+			l.settle(&p, &c)
+		} else {
+			l.Counted.piece(from, end-from).miss(from, end-from)
+		}
+		from = end
+	}
+}
+
 // What follows puts decided time into registers and minutes, each load's in the order
 // of time. The registers know which way the heat of stream or content went.
 
-// measured books a figure over [g, g+span).
-func (l *loadState) measured(f *Figure, g, span int64) {
+// enter books a figure over [g, g+span), which lies in one minute.
+func (l *loadState) enter(f *Figure, g, span int64) {
 	l.turn(g)
 	l.Minute.measure(f, g, span, l.terms.gives)
 	l.Registers.book(givenUp(f.Duty*(float64(span)/1e9), l.terms.gives), span)
 	l.turn(g + span)
 }
 
-// bridged books a duty that a straight line gives over [g, g+span).
-func (l *loadState) bridged(duty float64, g, span int64) {
+// enterBridged books heat that a straight line gives, J, positive where it was given up.
+func (l *loadState) enterBridged(heat float64, g, span int64) {
 	l.turn(g)
-	heat := givenUp(duty*(float64(span)/1e9), l.terms.gives)
 	l.Minute.bridge(heat, g, span)
 	l.Registers.bridge(heat, span)
 	l.turn(g + span)
 }
 
-// missing books [from, to) as time without a figure.
-func (l *loadState) missing(from, to int64) {
+// enterMissing books [from, to) as time without a figure.
+func (l *loadState) enterMissing(from, to int64) {
 	l.Registers.Missing += to - from
 	for from < to {
 		l.turn(from)

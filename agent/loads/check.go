@@ -24,6 +24,7 @@ func (c *Config) check() error {
 		if l.Vessel != nil {
 			err = l.Vessel.check()
 		}
+		err = errors.Join(err, l.checkCounters(c.Tags))
 		if err != nil {
 			errs = append(errs, fmt.Errorf("load %q: %w", l.Name, err))
 		}
@@ -33,6 +34,9 @@ func (c *Config) check() error {
 
 func (c *Config) checkTag(i int) error {
 	t := &c.Tags[i]
+	if n := t.Counter; n != nil && !(positive(n.Modulus) && positive(n.Largest)) {
+		return fmt.Errorf("counter that rolls over at %g and counts at most %g a second: both must be finite and not negative", n.Modulus, n.Largest)
+	}
 	if !t.OnChange {
 		return nil
 	}
@@ -41,6 +45,17 @@ func (c *Config) checkTag(i int) error {
 		return fmt.Errorf("reports by exception, and its liveness tag has index %d; there are %d tags", t.Alive, len(c.Tags))
 	case c.Tags[t.Alive].OnChange:
 		return fmt.Errorf("reports by exception, and so does its liveness tag %q; one that reports at intervals is wanted", c.Tags[t.Alive].Name)
+	}
+	return nil
+}
+
+// checkCounters says where the load has a counter that it cannot have, or has none.
+func (l *Load) checkCounters(tags []Tag) error {
+	if l.HasWitness && (l.Witness.Tag < 0 || tags[l.Witness.Tag].Counter == nil) {
+		return errors.New("witness that is no counter: the register of a heat meter is wanted")
+	}
+	if c := &l.Stream.Corrections; l.counter(tags) >= 0 && (c.HasPump || c.Hold > 0 || c.Stored > 0) {
+		return errors.New("corrections of a stream whose flow is counted: a flow at every instant is wanted for them")
 	}
 	return nil
 }

@@ -22,10 +22,16 @@ type Engine struct {
 	tally     []Tally
 	users     [][]int // loads that read each tag
 	onChange  []int   // tags that report by exception
+	counters  []bounded
 }
 
 // Tally counts what became of a tag's readings.
-type Tally struct{ Repeated, Late, Crowded uint64 }
+type Tally struct {
+	Repeated, Late, Crowded uint64
+	// Reset counts the falls of a counter that no roll-over explains, and Implausible the
+	// rises by more than can have passed.
+	Reset, Implausible uint64
+}
 
 // New returns an engine without history. The error names what in cfg cannot be
 // computed with.
@@ -54,6 +60,7 @@ func New(cfg Config) (*Engine, error) {
 		e.enlist(i)
 		e.loads[i] = newLoad(&cfg, i)
 	}
+	e.enlistCounters()
 	return e, nil
 }
 
@@ -172,6 +179,7 @@ func (e *Engine) begin() bool {
 func (e *Engine) arrive(g int64) {
 	e.reach(g)
 	e.lapse(g)
+	e.counts(g)
 }
 
 // reach holds the newest reading of each tag at g and marks the figures that
@@ -191,8 +199,9 @@ func (e *Engine) touch(tag int) {
 	}
 }
 
-// evaluateAll brings every figure to g and reports whether any was measured. A
-// figure whose inputs are the same and still held is not worked again.
+// evaluateAll brings every figure to g and reports whether any was measured, or may be
+// once its counter tells. A figure whose inputs are the same and still held is not
+// worked again.
 func (e *Engine) evaluateAll(g int64) bool {
 	any := false
 	for i := range e.loads {
@@ -201,7 +210,10 @@ func (e *Engine) evaluateAll(g int64) bool {
 			l.figure, l.fresh = e.evaluate(i, g), true
 		}
 		l.figure.At = g
-		any = any || l.figure.Measured()
+		if l.Counted != nil {
+			l.counting = e.counting(i, g)
+		}
+		any = any || l.figure.Measured() || l.counting
 	}
 	return any
 }
@@ -230,6 +242,11 @@ func (e *Engine) silence(g int64) int64 {
 func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 	for i := range e.loads {
 		l := &e.loads[i]
+		if l.Counted == nil {
+			l.roll(&l.figure, g, span)
+		} else {
+			e.bookCount(i, g, span)
+		}
 		l.book(g, span)
 		if len(l.closed) > 0 {
 			closed = append(closed, l.closed...)
@@ -237,4 +254,15 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		}
 	}
 	return closed
+}
+
+// bookCount rolls the windows of a load whose flow is counted, and decides on what has
+// waited for a count that has come at g.
+func (e *Engine) bookCount(load int, g, span int64) {
+	l := &e.loads[load]
+	f := e.live(load)
+	l.roll(&f, g, span)
+	if c := &e.tags[l.terms.counter].Count; c.To == g {
+		l.told(*c)
+	}
 }

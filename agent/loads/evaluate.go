@@ -19,10 +19,10 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 	f := Figure{At: g, Until: math.MaxInt64}
 	var x State
 	var d [PartCp]doubt
-	if !e.read(&f, q.Flow, &x.Flow, &d[PartFlow]) {
+	if !e.flow(load, &f, &x.Flow, &d[PartFlow]) {
 		return f
 	}
-	if x.Flow == 0 || math.Abs(x.Flow) <= q.IdleBelow {
+	if counted := e.loads[load].Counted != nil; !counted && (x.Flow == 0 || math.Abs(x.Flow) <= q.IdleBelow) {
 		f.Idle = true
 		return f
 	}

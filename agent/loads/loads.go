@@ -137,7 +137,7 @@ type Stream struct {
 	// and so is a liquid within it of freezing, but not beyond 3 K.
 	Margin float64
 	// IdleBelow is the flow, in the flow signal's SI unit, at or below which
-	// nothing is taken to flow.
+	// nothing is taken to flow. A counter is taken at its word.
 	IdleBelow float64
 	// Pair is the correlation of the errors of inlet and outlet thermometer, 0 to 1:
 	// that of a matched pair is near 1.
@@ -211,6 +211,14 @@ func (l *Load) gives() bool {
 		return l.Vessel.Gives
 	}
 	return l.Stream.Gives
+}
+
+// counter returns the tag that counts the load's flow; -1 where it is a rate.
+func (l *Load) counter(tags []Tag) int {
+	if i := l.Stream.Flow.Tag; l.Vessel == nil && i >= 0 && tags[i].Counter != nil {
+		return i
+	}
+	return -1
 }
 
 // Config is the whole plant as the engine sees it.

@@ -1,6 +1,10 @@
 package loads
 
-import "math"
+import (
+	"encoding/binary"
+	"fmt"
+	"math"
+)
 
 // Minute is what a load did in one minute of event time. Means are over the
 // measured time, those of temperatures and pressure over the part of it that
@@ -23,7 +27,7 @@ type Minute struct {
 	// Systematic is the signed contribution of each part to the uncertainty of the
 	// measured heat served, J: it adds up over minutes as it stands. Random is the
 	// variance by what does not last, J²: it adds up as variances do.
-	Systematic [Parts]float64
+	Systematic Shares
 	Random     float64
 	// Witness is what the load's witness counted, J, in the spans between two of its
 	// readings that ended in this minute and were measured throughout, and Compared the
@@ -44,6 +48,22 @@ func (m *Minute) Doubt() (lasting, random float64) {
 	}
 	s := float64(m.Measured) / 1e9
 	return math.Sqrt(sumOfSquares(m.Systematic[:])) / s, m.Random / (s * s)
+}
+
+// Shares is one number for each [Part].
+type Shares [Parts]float64
+
+// GobEncode and GobDecode let a state be read by a program that knows more parts.
+func (s Shares) GobEncode() ([]byte, error) { return binary.Append(nil, binary.LittleEndian, s) }
+
+// GobDecode takes the parts that were known when b was written; the others are 0.
+func (s *Shares) GobDecode(b []byte) error {
+	*s = Shares{}
+	if n := len(b) / 8; n*8 != len(b) || n > len(s) {
+		return fmt.Errorf("shares of %d bytes: at most %d numbers are known", len(b), len(s))
+	}
+	_, err := binary.Decode(b, binary.LittleEndian, s[:len(b)/8])
+	return err
 }
 
 // minuteSum gathers a [Minute]; means are kept as time-weighted sums in units of
@@ -106,6 +126,35 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 	s.Outlet += f.Outlet * dt
 	s.Pressure += f.Pressure * dt
 	s.Content += f.Content * dt
+}
+
+// add adds a part of the minute, that of g, which was summed for one unit of flow a
+// second where the flow was rate.
+func (m *minuteSum) add(o *Minute, g int64, rate float64) {
+	s := m.at(g)
+	s.Measured += o.Measured
+	s.Idle += o.Idle
+	s.Bridged += o.Bridged
+	s.Missing += o.Missing
+	s.Latent += o.Latent
+	s.Given += o.Given * rate
+	s.Taken += o.Taken * rate
+	s.BridgedGiven += o.BridgedGiven * rate
+	s.BridgedTaken += o.BridgedTaken * rate
+	s.Duty += o.Duty * rate
+	if o.Measured > 0 {
+		s.DutyMin, s.DutyMax = min(s.DutyMin, o.DutyMin*rate), max(s.DutyMax, o.DutyMax*rate)
+	}
+	s.Uncertainty += o.Uncertainty * rate
+	for p, share := range o.Systematic {
+		s.Systematic[p] += share * rate
+	}
+	s.Random += o.Random * rate * rate
+	s.MassFlow += o.MassFlow * rate
+	s.Inlet += o.Inlet
+	s.Outlet += o.Outlet
+	s.Pressure += o.Pressure
+	s.Content += o.Content
 }
 
 // close returns the finished minute and starts afresh; false where nothing of it

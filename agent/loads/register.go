@@ -48,3 +48,15 @@ func (r *Registers) bridge(heat float64, span int64) {
 		r.BridgedTaken.Add(-heat)
 	}
 }
+
+// add adds a part of a minute that was summed for one unit of flow a second where the
+// flow was rate.
+func (r *Registers) add(o *Minute, rate float64) {
+	r.Measured += o.Measured
+	r.Bridged += o.Bridged
+	r.Missing += o.Missing
+	r.Given.Add(o.Given * rate)
+	r.Taken.Add(o.Taken * rate)
+	r.BridgedGiven.Add(o.BridgedGiven * rate)
+	r.BridgedTaken.Add(o.BridgedTaken * rate)
+}

@@ -6,7 +6,9 @@ import (
 	"fmt"
 )
 
-const savedVersion = 1
+// savedVersion is that of the states this program writes. Those of version 1 have no
+// undecided time and none of what came with it, and are read as such.
+const savedVersion = 2
 
 // saved is the engine's state by name, so that a plant whose site file has
 // gained or lost tags and loads keeps the accounts of the others.
@@ -47,7 +49,7 @@ func (e *Engine) Restore(state []byte) error {
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
 		return fmt.Errorf("restore engine state of %d bytes: %w", len(state), err)
 	}
-	if s.Version != savedVersion {
+	if s.Version < 1 || s.Version > savedVersion {
 		return fmt.Errorf("restore engine state: version %d is not known, this program writes %d", s.Version, savedVersion)
 	}
 	e.next, e.through = s.Next, s.Through

@@ -3,6 +3,7 @@ package loads
 import (
 	"bytes"
 	"encoding/gob"
+	"os"
 	"strings"
 	"testing"
 )
@@ -48,6 +49,49 @@ func TestRestoreWithAnotherGrid(t *testing.T) {
 	}
 	next.Advance(Beat{nil, through(50)}, nil)
 	near(t, "given", next.Snapshot().Loads[0].Given, 160e3*(33+10), 1e-6) // 40 to 50 s
+}
+
+// The state was written by the release before bridges and counters, after 10 minutes and
+// 34 s at 160 kW, with a flow of 3 kg/s waiting at 639 s.
+func TestRestoreOfVersion1(t *testing.T) {
+	state, err := os.ReadFile("testdata/state-version-1.gob")
+	if err != nil {
+		t.Fatal(err)
+	}
+	e := engine(t, plant(liquid))
+	if err := e.Restore(state); err != nil {
+		t.Fatal(err)
+	}
+	closed := e.Advance(Beat{at(640, 3, 350, 330), through(700)}, nil)
+	l := accounted(t, e, 700, 0, 0, 0)
+	near(t, "given", l.Given, 160e3*639+240e3*61, 1e-6)
+	if len(closed) != 1 || closed[0].Measured != minute {
+		t.Fatalf("minutes %+v, want the whole of the eleventh", closed)
+	}
+	near(t, "given in the eleventh minute", closed[0].Given, 160e3*39+240e3*21, 1e-6)
+	near(t, "mean of an hour", l.Means[2].Duty, (160e3*639+240e3*61)/700, 1e-6)
+}
+
+// Parts of the uncertainty that this program does not know yet, or no more, read as
+// nothing.
+func TestSharesOfFewerParts(t *testing.T) {
+	full := Shares{1, 2, 3}
+	b, err := full.GobEncode()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var got Shares
+	if err := got.GobDecode(b); err != nil || got != full {
+		t.Errorf("%v, %v; want %v", got, err, full)
+	}
+	if err := got.GobDecode(b[:16]); err != nil || got != (Shares{1, 2}) {
+		t.Errorf("%v, %v; want the first two", got, err)
+	}
+	for _, bad := range [][]byte{b[:15], append(b, b[:8]...)} {
+		if err := got.GobDecode(bad); err == nil {
+			t.Errorf("%d bytes are taken, want an error", len(bad))
+		}
+	}
 }
 
 func TestRestoreRefusesWhatItDoesNotKnow(t *testing.T) {

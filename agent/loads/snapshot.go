@@ -20,7 +20,8 @@ type LoadState struct {
 	Means [len(Windows)]Mean
 	Totals
 	// Undecided is the time, ns, up to the snapshot's Through that is in no total yet,
-	// since what comes next decides on it: a gap that may be bridged.
+	// since what comes next decides on it: a gap that may be bridged, or what a counter
+	// has not told yet.
 	Undecided int64
 }
 
@@ -45,8 +46,8 @@ func (e *Engine) Snapshot() Snapshot {
 		Tags:    make([]TagState, len(e.tags)),
 	}
 	for i := range e.loads {
-		s.Loads[i] = e.loads[i].snapshot(e.next)
-		s.Loads[i].Until = e.until(i)
+		s.Loads[i] = e.loads[i].snapshot(e.live(i), e.next)
+		s.Loads[i].Until = e.until(i, s.Loads[i].Figure.Idle)
 	}
 	for i := range e.tags {
 		s.Tags[i] = TagState{Newest: e.tags[i].Newest, Tally: e.tally[i]}
@@ -55,9 +56,9 @@ func (e *Engine) Snapshot() Snapshot {
 }
 
 // until is [LoadState.Until] of a load; an idle one needs only its flow.
-func (e *Engine) until(load int) int64 {
+func (e *Engine) until(load int, idle bool) int64 {
 	needs := e.equations[load].needs
-	if e.loads[load].figure.Idle {
+	if idle {
 		needs = needs[:1]
 	}
 	until := int64(math.MaxInt64)
@@ -67,9 +68,9 @@ func (e *Engine) until(load int) int64 {
 	return until
 }
 
-func (l *loadState) snapshot(through int64) LoadState {
+func (l *loadState) snapshot(live Figure, through int64) LoadState {
 	s := LoadState{
-		Figure: l.figure,
+		Figure: live,
 		Totals: l.Registers.totals(),
 	}
 	s.Undecided = l.undecided(through)

@@ -36,6 +36,7 @@ type tagState struct {
 	// Lapse is the newest grid point at which an on-change tag had no sign of life: a
 	// reading from before it does not hold. 0 for none.
 	Lapse    int64
+	Count    count    // of a counter
 	standing standing // of an on-change tag at the grid point last computed
 	recent   []int64  // ring of stamps taken
 	next     int      // where the ring is written next

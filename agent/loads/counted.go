@@ -1,0 +1,98 @@
+package loads
+
+// counted is the time of a load with a counter for its flow that the next count decides
+// on. Its heat is kept for one unit of flow a second.
+type counted struct {
+	Pieces []piece // since the last count, one a minute
+	Told   []count // those that came in a gap that is still open
+}
+
+// piece is a part of a minute that one count decides on.
+type piece struct {
+	From, To int64
+	Sum      minuteSum
+}
+
+// piece returns the sum of the present piece, widened to hold [g, g+span).
+func (c *counted) piece(g, span int64) *minuteSum {
+	n := len(c.Pieces)
+	if n == 0 || g >= c.Pieces[n-1].Sum.Sum.Start+minute {
+		c.Pieces = append(c.Pieces, piece{From: g})
+		n++
+	}
+	p := &c.Pieces[n-1]
+	p.To = g + span
+	return &p.Sum
+}
+
+// at returns the count that is known of the grid point g in an open gap.
+func (c *counted) at(g int64) (count, bool) {
+	for len(c.Told) > 0 && c.Told[0].To <= g {
+		c.Told = c.Told[1:]
+	}
+	if len(c.Told) == 0 {
+		return count{}, false
+	}
+	return c.Told[0], true
+}
+
+// told takes a new count: it decides on the pieces, and on a gap once that has ended.
+func (l *loadState) told(c count) {
+	l.counts(&c)
+	if l.Gap.open() {
+		l.Counted.Told = append(l.Counted.Told, c)
+	}
+}
+
+// unheard decides that the pieces, and an open gap, are missing: no count came for too
+// long.
+func (l *loadState) unheard() {
+	if l.Gap.open() {
+		l.lapse()
+	}
+	l.counts(&count{})
+}
+
+// counts books the pieces by the count that they waited for.
+func (l *loadState) counts(c *count) {
+	pieces := l.Counted.Pieces
+	l.Counted.Pieces = nil
+	if len(pieces) == 0 {
+		return
+	}
+	l.blur(pieces, c)
+	for i := range pieces {
+		l.settle(&pieces[i], c)
+	}
+}
+
+// blur adds what the steps of the counter add to the variance of the heat, in the
+// minute in which the count came.
+func (l *loadState) blur(pieces []piece, c *count) {
+	var heat float64 // of the whole count, at one unit of flow a second
+	for i := range pieces {
+		s := &pieces[i].Sum.Sum
+		heat += s.Given - s.Taken
+	}
+	seconds := float64(c.To-c.From) / 1e9
+	if u := resolution(l.terms.step); u > 0 && c.Known && c.Amount > 0 {
+		u *= heat / seconds / c.rate() // of the heat, as it is before it is scaled
+		pieces[len(pieces)-1].Sum.Sum.Random += u * u
+	}
+}
+
+// settle books a piece. A count of nothing is measured time without a flow, which needs
+// no temperatures, and one that is not known is missing.
+func (l *loadState) settle(p *piece, c *count) {
+	switch {
+	case !c.Known:
+		l.enterMissing(p.From, p.To)
+	case c.Amount == 0:
+		l.enter(&Figure{Idle: true}, p.From, p.To-p.From)
+	default:
+		l.turn(p.From)
+		l.Minute.add(&p.Sum.Sum, p.From, c.rate())
+		l.Registers.add(&p.Sum.Sum, c.rate())
+		l.turn(p.To)
+	}
+}

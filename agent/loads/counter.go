@@ -1,0 +1,181 @@
+package loads
+
+import (
+	"fmt"
+	"math"
+)
+
+const (
+	// leeway is by how much a count may exceed the largest rate of its counter: meters run
+	// over their nominal flow for a while (common practice, no source).
+	leeway = 1.1
+	// largestRate bounds counters without a largest rate of their own, so that an absurd
+	// number does not spoil a register: in W for energy; [largestMassFlow] stands for
+	// those of flow, in their own units.
+	largestRate = 1e12
+)
+
+// count is what a counter has told: that Amount passed in [From, To).
+type count struct {
+	At       int64 // stamp of the newest reading told; 0 before the first
+	Value    float64
+	From, To int64   // grid points that reached the last reading but one, and the last
+	Amount   float64 // in the unit of the register
+	Known    bool    // false after one reading alone, a reset, or more than can be
+	Why      string  // it is not known
+}
+
+// rate is the mean flow of the count, a second.
+func (c *count) rate() float64 { return c.Amount / (float64(c.To-c.From) / 1e9) }
+
+// difference says what became of two readings of a register.
+type difference uint8
+
+const (
+	risen       difference = iota
+	reset                  // fell, and no roll-over explains it: the amount is unknown
+	implausible            // rose by more than can have passed
+)
+
+// rise returns how far a register has come from one reading to a later one: a fall by
+// more than half the modulus is a roll-over. Of numbers that step, one step more than
+// the largest rate gives may show. Check: 99987.3 to 14.2 at a modulus of 100000 is
+// 26.9, and 4294960000 to 1500 in 32 bits 8796 (arithmetic).
+func (c *Counter) rise(from, to, step, largest float64, span int64) (float64, difference) {
+	amount := to - from
+	if amount < 0 {
+		if -amount <= c.Modulus/2 || c.Modulus <= 0 {
+			return 0, reset
+		}
+		amount += c.Modulus
+	}
+	if !(amount-step <= leeway*largest*float64(span)/1e9) {
+		return 0, implausible
+	}
+	return amount, risen
+}
+
+// bounded is a counter of the plant with its largest rate.
+type bounded struct {
+	tag     int
+	largest float64
+}
+
+// enlistCounters notes the tags that are registers.
+func (e *Engine) enlistCounters() {
+	for i := range e.cfg.Tags {
+		c := e.cfg.Tags[i].Counter
+		if c == nil {
+			continue
+		}
+		largest := c.Largest
+		if largest <= 0 {
+			largest = largestRate
+			if len(e.users[i]) > 0 {
+				largest = largestMassFlow
+			}
+		}
+		e.counters = append(e.counters, bounded{i, largest})
+	}
+}
+
+// counts brings what the counters have told to g. One that reports by exception tells
+// by its silence that nothing has passed, each time that the silence has lasted for
+// its maximum age.
+func (e *Engine) counts(g int64) {
+	for _, b := range e.counters {
+		t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
+		switch {
+		case t.Held.Has && t.Held.At != t.Count.At:
+			e.tell(b, g)
+		case tag.OnChange && t.Count.At != 0 && t.standing == holds && g-t.Count.To >= tag.MaxAge:
+			t.Count.From, t.Count.To, t.Count.Amount, t.Count.Known = t.Count.To, g, 0, true
+		}
+	}
+}
+
+// tell works the difference between the reading held at g and the one before.
+func (e *Engine) tell(b bounded, g int64) {
+	t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
+	was := t.Count
+	t.Count = count{At: t.Held.At, Value: t.Held.Value, From: was.To, To: g}
+	c := &t.Count
+	if was.At == 0 {
+		c.Why = fmt.Sprintf("counter %q has told one count, and a flow takes two", tag.Name)
+		return
+	}
+	span := max(c.At-was.At, c.To-c.From)
+	amount, d := tag.Counter.rise(was.Value, c.Value, tag.Resolution, b.largest, span)
+	switch d {
+	case risen:
+		c.Amount, c.Known = amount, true
+	case reset:
+		e.tally[b.tag].Reset++
+		c.Why = fmt.Sprintf("counter %q fell from %.10g to %.10g: what passed is not known", tag.Name, was.Value, c.Value)
+	case implausible:
+		e.tally[b.tag].Implausible++
+		c.Why = fmt.Sprintf("counter %q rose from %.10g to %.10g in %g s: more than can have passed", tag.Name, was.Value, c.Value, float64(span)/1e9)
+	}
+}
+
+// counting reports whether the counter that tells a load's flow is alive at g.
+func (e *Engine) counting(load int, g int64) bool {
+	i := e.loads[load].terms.counter
+	t, tag := &e.tags[i], &e.cfg.Tags[i]
+	if tag.OnChange {
+		return t.standing == holds
+	}
+	return t.Held.Has && g-t.Held.At < tag.MaxAge
+}
+
+// flow reads the flow of a stream. Where it is counted it is one unit a second, for the
+// figure to be scaled once the count is known, and its uncertainty that of a reading in
+// proportion: what an error of the register has in common falls out of a difference.
+func (e *Engine) flow(load int, f *Figure, flow *float64, d *doubt) bool {
+	src := e.equations[load].Flow
+	if !e.read(f, src, flow, d) {
+		return false
+	}
+	if e.loads[load].Counted != nil {
+		relative := Accuracy{Rel: e.cfg.Tags[src.Tag].Accuracy.Rel}
+		*flow, *d = 1, doubt{accuracy: relative.Standard(1)}
+	}
+	return true
+}
+
+// live returns the present figure of a load. Where the flow is counted it is worked with
+// the mean flow between the last two counts, and nothing but a count is needed to tell
+// that nothing flows.
+func (e *Engine) live(load int) Figure {
+	l := &e.loads[load]
+	f := l.figure
+	if l.Counted == nil || !l.counting {
+		return f
+	}
+	c := &e.tags[l.terms.counter].Count
+	switch {
+	case !c.Known:
+		return f.fail(NoReading, c.Why)
+	case c.Amount == 0:
+		return Figure{At: f.At, Idle: true, Until: f.Until}
+	case f.Measured():
+		f.scale(c.rate())
+	}
+	return f
+}
+
+// scale makes the figure of one unit of flow that of rate.
+func (f *Figure) scale(rate float64) {
+	f.Duty *= rate
+	f.Uncertainty *= rate
+	for p := range f.Share {
+		f.Share[p] *= rate
+	}
+	f.Random *= rate
+	f.Variance *= rate * rate
+	f.MassFlow *= rate
+}
+
+// resolution is the standard uncertainty of a difference of two readings of a register
+// that steps by r: of two roundings, each r/√12 (JCGM 100:2008, F.2.2.1).
+func resolution(r float64) float64 { return r / math.Sqrt(6) }
