@@ -10,6 +10,7 @@ import (
 	"strings"
 	"time"
 
+	"heatreeve/agent/loads"
 	"heatreeve/store"
 )
 
@@ -32,10 +33,18 @@ type export struct {
 }
 
 // minuteColumns are those of a load's minutes.
-var minuteColumns = []string{
-	"start", "measured_s", "missing_s", "given_J", "taken_J",
-	"duty_W", "lowest_duty_W", "highest_duty_W", "duty_uncertainty_W",
-	"mass_flow_kg_per_s", "inlet_K", "outlet_K", "pressure_Pa",
+func minuteColumns() []string {
+	columns := []string{
+		"start", "measured_s", "missing_s", "given_J", "taken_J",
+		"duty_W", "lowest_duty_W", "highest_duty_W", "duty_uncertainty_W",
+		"mass_flow_kg_per_s", "inlet_K", "outlet_K", "pressure_Pa", "content_K",
+		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "witness_counted_J", "witness_served_J",
+		"random_variance_J2",
+	}
+	for p := range loads.Parts {
+		columns = append(columns, "systematic_"+strings.ReplaceAll(p.String(), " ", "_")+"_J")
+	}
+	return columns
 }
 
 const (
@@ -65,7 +74,7 @@ func (h *history) export(s Selection) (*export, error) {
 	}
 	kind, name, of := "tag", s.Tag, "reading"
 	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), "stamped"}; x.minutes {
-		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns
+		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns()
 	}
 	if !x.minutes && h.units[s.Tag] == changedUnit {
 		x.note = fmt.Sprintf("tag %q has not always measured the same: the unit of its values changed with the site file", s.Tag)
@@ -158,17 +167,23 @@ func readingRow(r *rows, v *store.Reading) {
 	r.truth(v.Stamped)
 }
 
-// minuteRow leaves out the means of a minute in which nothing was measured.
+// minuteRow leaves out the means of a minute in which nothing was measured, and
+// temperatures and pressures that there are none of.
 func minuteRow(r *rows, m *store.Minute) {
 	r.instant(m.Start, minuteTime)
 	for _, x := range [...]float64{m.Measured, m.Missing, m.Given, m.Taken} {
 		r.number(x)
 	}
-	for _, x := range [...]float64{m.Duty, m.DutyMin, m.DutyMax, m.DutyUncertainty, m.Flow, m.Inlet, m.Outlet, m.Pressure} {
-		if m.Measured > 0 {
-			r.number(x)
-		} else {
-			r.none()
-		}
+	for _, x := range [...]float64{m.Duty, m.DutyMin, m.DutyMax, m.DutyUncertainty, m.Flow} {
+		r.numberIf(m.Measured > 0, x)
+	}
+	for _, x := range [...]float64{m.Inlet, m.Outlet, m.Pressure, m.Content} {
+		r.numberIf(m.Measured > 0 && x != 0, x)
+	}
+	for _, x := range [...]float64{m.Bridged, m.BridgedGiven, m.BridgedTaken, m.Latent, m.Witness, m.Compared, m.Random} {
+		r.number(x)
+	}
+	for _, x := range m.Systematic[:loads.Parts] {
+		r.number(x)
 	}
 }

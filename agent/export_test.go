@@ -19,6 +19,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/loads"
 	"heatreeve/store"
 )
 
@@ -155,21 +156,59 @@ func TestExportOfMinutes(t *testing.T) {
 		return m, k != 62
 	}, "other", "ramp")
 	h := historyIn(t, db, "UTC")
+	parts := strings.Repeat(",0", int(loads.Parts))
 	text, err := exported(h, Selection{Load: "ramp", From: "2026-10-24T00:00", To: "2026-10-24T00:04"})
-	want := "start,measured_s,missing_s,given_J,taken_J,duty_W,lowest_duty_W,highest_duty_W,duty_uncertainty_W,mass_flow_kg_per_s,inlet_K,outlet_K,pressure_Pa\r\n" +
-		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000\r\n" +
-		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,\r\n" +
-		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000\r\n"
+	want := strings.Join(minuteColumns(), ",") + "\r\n" +
+		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0" + parts + "\r\n" +
+		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,,,0,0,0,0,0,0,0" + parts + "\r\n" +
+		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0" + parts + "\r\n"
 	if err != nil || text != want {
 		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
 	}
 	text, err = exported(h, Selection{Load: "ramp", From: "2026-10-24T00:01", To: "2026-10-24T00:02", Format: "json"})
-	want = `{"start":"2026-10-24T00:01:00Z","measured_s":0,"missing_s":60,"given_J":0,"taken_J":0,"duty_W":null,"lowest_duty_W":null,"highest_duty_W":null,"duty_uncertainty_W":null,"mass_flow_kg_per_s":null,"inlet_K":null,"outlet_K":null,"pressure_Pa":null}` + "\n"
-	if err != nil || text != want {
+	want = `{"start":"2026-10-24T00:01:00Z","measured_s":0,"missing_s":60,"given_J":0,"taken_J":0,"duty_W":null,"lowest_duty_W":null,"highest_duty_W":null,"duty_uncertainty_W":null,"mass_flow_kg_per_s":null,"inlet_K":null,"outlet_K":null,"pressure_Pa":null,"content_K":null,"bridged_s":0,`
+	if err != nil || !strings.HasPrefix(text, want) || !strings.HasSuffix(text, `,"`+minuteColumns()[len(minuteColumns())-1]+`":0}`+"\n") {
 		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
 	}
 	if text, err = exported(h, Selection{Load: "ramp"}); err != nil || strings.Count(text, "\n") != 3000 {
 		t.Errorf("all: %d lines, %v; want a header and 2999", strings.Count(text, "\n"), err)
+	}
+}
+
+// Every figure of a minute has its column, and one that there is none of is empty.
+func TestMinuteRow(t *testing.T) {
+	m := store.Minute{
+		Start: week.UnixNano(), Measured: 40, Bridged: 15, Missing: 5, Given: 1, Taken: 2, BridgedGiven: 3, BridgedTaken: 4, Latent: 6,
+		Duty: 7, DutyMin: -8, DutyMax: 9, DutyUncertainty: 10, Content: 338.15, Random: 11, Witness: 12, Compared: 13,
+	}
+	for p := range loads.Parts {
+		m.Systematic[p] = -100 - float64(p)
+	}
+	var b bytes.Buffer
+	columns := minuteColumns()
+	r := newRows(&b, true, columns)
+	if minuteRow(r, &m); r.column != len(columns) {
+		t.Errorf("%d fields in %d columns", r.column, len(columns))
+	}
+	if err := errors.Join(r.end(), r.flush()); err != nil {
+		t.Fatal(err)
+	}
+	var got map[string]any
+	if err := json.Unmarshal(b.Bytes(), &got); err != nil {
+		t.Fatal(err)
+	}
+	for name, want := range map[string]any{
+		"start": "2026-10-23T23:00:00Z", "measured_s": 40., "bridged_s": 15., "missing_s": 5., "given_J": 1., "taken_J": 2., "bridged_given_J": 3., "bridged_taken_J": 4.,
+		"latent_s": 6., "duty_W": 7., "lowest_duty_W": -8., "highest_duty_W": 9., "duty_uncertainty_W": 10., "mass_flow_kg_per_s": 0., "inlet_K": nil, "pressure_Pa": nil,
+		"content_K": 338.15, "random_variance_J2": 11., "witness_counted_J": 12., "witness_served_J": 13.,
+		"systematic_flow_J": -100., "systematic_heat_capacity_J": -100 - float64(loads.PartCp), "systematic_density_J": -100 - float64(loads.PartDensity),
+	} {
+		if got[name] != want {
+			t.Errorf("%s is %v, want %v", name, got[name], want)
+		}
+	}
+	if len(got) != len(columns) {
+		t.Errorf("%d names of %d columns", len(got), len(columns))
 	}
 }
 

@@ -69,6 +69,15 @@ func (r *rows) number(x float64) {
 	r.line = strconv.AppendFloat(r.line, x, form, -1, 64)
 }
 
+// numberIf adds x, or an empty field.
+func (r *rows) numberIf(there bool, x float64) {
+	if there {
+		r.number(x)
+	} else {
+		r.none()
+	}
+}
+
 func (r *rows) truth(b bool) {
 	r.next()
 	r.line = strconv.AppendBool(r.line, b)

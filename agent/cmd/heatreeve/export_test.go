@@ -10,6 +10,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"regexp"
 	"slices"
 	"strconv"
 	"strings"
@@ -142,6 +143,27 @@ func TestExportRefusals(t *testing.T) {
 	defer db.Close()
 	if status, _, errs := export("--data", data, "--tag", "TT-201"); status != exitFailed || !strings.Contains(errs, "file is locked") || !strings.Contains(errs, "on a copy of the file") {
 		t.Errorf("a file that another program has open: status %d, %s", status, errs)
+	}
+}
+
+// The columns of a minute that the README tells are those that there are.
+func TestReadmeNamesTheMinuteColumns(t *testing.T) {
+	_, rest, ok := strings.Cut(strings.Join(strings.Fields(readme(t)), " "), "Its columns: ")
+	list, _, closed := strings.Cut(rest, "as it stands.")
+	if !ok || !closed {
+		t.Fatal("the README tells no columns")
+	}
+	var said []string
+	for _, m := range regexp.MustCompile("`(\\w+)`").FindAllStringSubmatch(list, -1) {
+		said = append(said, m[1])
+	}
+	status, text, errs := export("--data", keep(t), "--load", "hot-water", "--to", "2026-10-24T01:00")
+	header, _, _ := strings.Cut(text, "\r\n")
+	have := strings.Split(header, ",")
+	slices.Sort(said)
+	slices.Sort(have)
+	if status != exitGood || !slices.Equal(said, have) {
+		t.Errorf("status %d, %s: the program has %v,\nthe README tells %v", status, errs, have, said)
 	}
 }
 
