@@ -17,6 +17,9 @@ const (
 	eagerReadings = 20_000
 	// pieceReadings is how many readings go through the accounts at one time.
 	pieceReadings = 1000
+	// tryAgain is the longest time between two tries to write to a disk that takes
+	// nothing.
+	tryAgain = 10 * time.Second
 	// mostLag bounds how far behind the clock stamps may lag for a figure still to
 	// count as live: beyond it is not a slow clock but an old message.
 	mostLag = 2 * time.Minute
@@ -34,7 +37,8 @@ type rhythm struct {
 	trimmed   time.Time
 	window    window
 	told      bool   // that the broker waits
-	inMemory  bool   // messages were acknowledged that are not on disk
+	hold      hold   // while the disk takes nothing
+	rate      rate   // of messages, while it does
 	late      []bool // tags whose first late reading has been told
 }
 
@@ -65,6 +69,8 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 			a.beat(r, time.Now())
 		case <-look.C:
 			a.look(r, time.Now())
+		case <-a.session.Reached():
+			a.reached(r, time.Now())
 		case <-ctx.Done():
 			return a.last(r)
 		}
@@ -83,6 +89,7 @@ func (a *Agent) tellFuture(through int64) {
 // look commits at once where the broker waits for acknowledgements.
 func (a *Agent) look(r *rhythm, system time.Time) {
 	commit := r.window.look(a.session.Waiting())
+	a.session.TellAt(r.window.limit)
 	if r.window.proven && !r.told {
 		r.told = true
 		a.o.Log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", "messages", r.window.acked)
@@ -91,19 +98,35 @@ func (a *Agent) look(r *rhythm, system time.Time) {
 		a.take(r)
 		a.commit(r, system, false)
 	}
-	if r.books.fault != "" && r.window.stuck() && len(r.unacked) > 0 {
+	if r.books.fault != "" && r.hold.over(system, r.window.stuck(), r.rate.perSecond) {
 		a.goOn(r)
 	}
 }
 
-// goOn acknowledges what is in memory only: the disk takes nothing, so the broker
-// has stopped sending, and the loads would go blind. What the accounts hold goes
-// into the next checkpoint; a crash before it loses it.
-func (a *Agent) goOn(r *rhythm) {
-	if !r.inMemory {
-		a.o.Log.Warn("the disk takes nothing and the broker waits: going on in memory; a crash now would lose what has come since the last commit")
+// reached commits at once where the broker has sent all that it sends without an
+// acknowledgement.
+func (a *Agent) reached(r *rhythm, system time.Time) {
+	waiting := a.session.Waiting()
+	switch {
+	case r.hold.inMemory:
+		a.goOn(r)
+	case r.window.reached(waiting):
+		a.put(r)
+		a.commit(r, system, false)
 	}
-	r.inMemory, r.books.forced = true, true
+	a.session.TellAt(r.window.limit)
+}
+
+// goOn acknowledges what is in memory only: the disk takes nothing, the broker has
+// stopped sending, and its own queue would be full before long. What the accounts hold
+// goes into the next checkpoint; a crash before it loses what came since the last
+// commit.
+func (a *Agent) goOn(r *rhythm) {
+	if !r.hold.inMemory {
+		a.o.Log.Warn("the disk takes nothing, and the broker has stopped sending and must be taken to drop readings before long: going on in memory; a crash now would lose what has come since the last commit")
+	}
+	a.put(r)
+	r.hold.inMemory, r.books.forced = true, true
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]
 	r.window.failed()
@@ -138,16 +161,21 @@ func (a *Agent) last(r *rhythm) error {
 	return nil
 }
 
-// take puts what came through the accounts, in pieces, so that event time keeps up
-// with a backlog and no more than the lateness of it ever waits.
+// take looks at the session and puts what came through the accounts.
 func (a *Agent) take(r *rhythm) {
-	now := a.o.Now()
-	r.received = a.session.Take(r.received[:0])
 	before := r.stats.Connections
 	r.stats = a.session.Stats()
 	if r.stats.Connections != before {
 		r.window.connected()
 	}
+	a.put(r)
+}
+
+// put puts what came through the accounts, in pieces, so that event time keeps up
+// with a backlog and no more than the lateness of it ever waits.
+func (a *Agent) put(r *rhythm) {
+	now := a.o.Now()
+	r.received = a.session.Take(r.received[:0])
 	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
 	for rest := r.received; ; {
 		piece := rest[:min(len(rest), pieceReadings)]
@@ -174,8 +202,13 @@ func (a *Agent) note(r *rhythm, piece []ingest.Received, now time.Time) {
 	}
 }
 
+// due tells whether to commit; a disk that takes nothing is tried in its own rhythm.
 func (a *Agent) due(r *rhythm, system time.Time) bool {
-	return system.Sub(r.committed) >= a.site.Timing.Commit || r.books.waiting >= eagerReadings
+	since := system.Sub(r.committed)
+	if r.books.fault != "" {
+		return since >= min(a.site.Timing.Commit, tryAgain)
+	}
+	return since >= a.site.Timing.Commit || r.books.waiting >= eagerReadings
 }
 
 // commit writes to disk and only then acknowledges to the broker.
@@ -191,10 +224,11 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 		r.window.failed()
 		return false
 	}
-	if r.inMemory {
+	if r.hold.inMemory {
 		a.o.Log.Info("the history is written again")
 	}
-	r.inMemory = false
+	r.hold = hold{}
+	r.rate.note(len(r.unacked), system)
 	r.window.committed(a.session.Waiting())
 	a.session.Ack(r.unacked)
 	r.unacked = r.unacked[:0]

@@ -35,7 +35,8 @@ type ledger struct {
 	tagIDs      []uint32
 	loadIDs     []uint32
 	batch       store.Batch
-	waiting     int // readings in batch
+	waiting     int   // readings in batch
+	booked      int64 // event time of committed
 	committed   []loads.Totals
 	through     atomic.Int64 // event time as last committed; for any goroutine
 	saved       time.Time    // of the last checkpoint
@@ -269,11 +270,18 @@ func (l *ledger) bound() {
 }
 
 // commit writes what waits, with the registers, and with a checkpoint when one is
-// due or asked for. After an error everything waits on.
+// due or asked for. After an error everything waits on. Registers that cannot have
+// changed are not written again: a broker with a small limit of messages in flight
+// may want hundreds of commits a second.
 func (l *ledger) commit(now time.Time, checkpoint bool) error {
-	registers := l.registers()
-	l.batch.Checkpoint = nil
+	through := l.accounts.engine.Through()
 	checkpoint = checkpoint || l.forced || now.Sub(l.saved) >= checkpointEvery
+	registers := l.committed
+	l.batch.Registers, l.batch.Checkpoint = l.batch.Registers[:0], nil
+	if through != l.booked || checkpoint {
+		registers = l.registers()
+		l.writeRegisters(registers)
+	}
 	if checkpoint {
 		state, err := l.accounts.save()
 		if err != nil {
@@ -281,7 +289,6 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 		}
 		l.batch.Checkpoint = state
 	}
-	l.writeRegisters(registers)
 	if err := l.store.Commit(l.batch); err != nil {
 		l.fail(err)
 		return err
@@ -289,14 +296,13 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	if checkpoint {
 		l.saved, l.forced = now, false
 	}
-	l.committed, l.fault, l.waiting = registers, "", 0
-	l.through.Store(l.accounts.engine.Snapshot().Through)
+	l.committed, l.booked, l.fault, l.waiting = registers, through, "", 0
+	l.through.Store(through)
 	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
 	return nil
 }
 
 func (l *ledger) writeRegisters(registers []loads.Totals) {
-	l.batch.Registers = l.batch.Registers[:0]
 	for i, r := range registers {
 		l.batch.Registers = append(l.batch.Registers, store.Register{
 			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, BridgedGiven: r.BridgedGiven, BridgedTaken: r.BridgedTaken,

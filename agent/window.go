@@ -19,6 +19,11 @@ const (
 	// maxMisses is after how many early commits in a row, each without an answer,
 	// the agent no longer believes that the broker waits.
 	maxMisses = 3
+	// proofLooks is how many looks a limit is believed in before it is put to the proof.
+	proofLooks = 300
+	// proofAnswer is how many messages, after a silence at the limit, prove that the
+	// broker kept them back.
+	proofAnswer = 2
 )
 
 // window finds out whether the broker waits for acknowledgements, because it allows
@@ -27,11 +32,20 @@ const (
 // half as many messages as were acknowledged, or more. While it does, the agent
 // commits in each silence; a plant whose bursts only looked like that gives no
 // answers, and is left alone after three.
+//
+// A silence that was answered also tells the limit: as many messages as waited in it.
+// From then on the agent does not wait for silences, which would let no more than a
+// few hundred messages a second through, but commits whenever so many wait. More
+// than that at once, and the limit is forgotten, for the broker has another; twice a
+// minute it is put to the proof by a silence.
 type window struct {
 	eager   bool // the broker waits for us, or may
 	proven  bool // it was seen to
 	misses  int
 	early   bool // the last commit was for the broker's sake
+	limit   int  // messages at which the broker stops; 0: not known
+	proof   int  // looks until the limit is put to the proof; none left: it is being
+	hits    int  // commits at the limit since the last proof
 	waiting int  // at the last look
 	silent  int  // looks without a message
 	acked   int  // messages that the last commit acknowledged
@@ -41,11 +55,12 @@ type window struct {
 // committed notes that a commit has acknowledged n messages.
 func (w *window) committed(n int) {
 	w.acked, w.waiting, w.looks, w.silent = n, 0, 0, 0
+	w.eager = w.eager || w.limit > 0
 }
 
 // connected notes a new connection: what the broker kept is to come, so it waits for
 // us until it is seen not to.
-func (w *window) connected() { w.eager, w.misses = true, 0 }
+func (w *window) connected() { w.eager, w.misses, w.limit = true, 0, 0 }
 
 // failed notes that a commit could not be made: the broker's silence means nothing
 // until one is.
@@ -55,25 +70,69 @@ func (w *window) failed() { w.eager, w.early, w.acked, w.silent = false, false, 
 // broker's sake.
 func (w *window) look(waiting int) bool {
 	if w.looks++; w.looks == answerLooks {
-		w.judge(waiting >= max(leastWindow, w.acked/2) && w.acked >= leastWindow)
+		w.judge(waiting)
 	}
+	w.outgrown(waiting)
 	if w.silent++; waiting != w.waiting {
 		w.silent = 0
 	}
 	w.waiting = waiting
+	w.proof = max(0, w.proof-1)
 	commit := w.eager && waiting >= leastWindow && w.silent >= silentLooks && w.looks > answerLooks
+	if w.limit > 0 { // the number speaks as well, and a queue of a thousand may be full within three looks
+		commit = w.eager && waiting == w.limit && w.silent > 0
+	}
 	w.early = w.early || commit
 	return commit
 }
 
-// stuck reports whether messages wait and no more have come for a while.
-func (w *window) stuck() bool { return w.waiting >= leastWindow && w.silent >= stuckLooks }
+// reached takes in that the limit may have been, and reports whether to commit at once.
+func (w *window) reached(waiting int) bool {
+	w.outgrown(waiting)
+	if !w.eager || w.limit == 0 || waiting != w.limit {
+		return false
+	}
+	if w.proof == 0 && w.early && w.looks < answerLooks { // the silence at the limit is answered in full
+		w.early, w.proof, w.hits = false, proofLooks, 0
+	}
+	if w.proof > 0 {
+		w.hits++
+		return true
+	}
+	if w.hits > proofLooks { // at such a rate any moment without a message is a silence
+		w.waiting = waiting
+	}
+	return false
+}
 
-// judge takes in whether the last commit was answered.
-func (w *window) judge(answered bool) {
+// most is how many messages are thought to be all that the broker sends.
+func (w *window) most() int { return max(leastWindow, w.limit) }
+
+// stuck reports whether the broker is thought to have stopped: as many messages wait
+// as it sends, or have waited for a while.
+func (w *window) stuck() bool { return w.waiting >= w.most() && w.silent >= stuckLooks }
+
+// outgrown forgets a limit that the broker does not keep to.
+func (w *window) outgrown(waiting int) {
+	if w.limit > 0 && waiting > w.limit {
+		w.limit = 0
+	}
+}
+
+// judge takes in how many messages have come since the last commit.
+func (w *window) judge(waiting int) {
+	answered := w.acked >= leastWindow && waiting >= max(leastWindow, w.acked/2)
 	switch {
+	case w.early && w.limit > 0:
+		w.proof, w.hits = proofLooks, 0
+		if waiting < proofAnswer {
+			w.eager, w.limit = false, 0
+		}
 	case answered:
 		w.eager, w.proven, w.misses = true, true, 0
+		if w.early {
+			w.limit, w.proof, w.hits = w.acked, proofLooks, 0
+		}
 	case w.early:
 		w.misses++
 		if w.misses >= maxMisses {

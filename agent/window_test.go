@@ -11,8 +11,16 @@ func play(w *window, limit, every, looks int, publish func(i int) int) (most, co
 	for i := range looks {
 		kept += publish(i)
 		most = max(most, kept)
-		send := min(kept, limit-inFlight)
-		kept, inFlight = kept-send, inFlight+send
+		for {
+			send := min(kept, limit-inFlight)
+			kept, inFlight = kept-send, inFlight+send
+			if send == 0 || !w.reached(inFlight) {
+				break
+			}
+			w.committed(inFlight)
+			inFlight, last = 0, i
+			commits++
+		}
 		if w.look(inFlight) || i-last >= every {
 			w.committed(inFlight)
 			inFlight, last = 0, i
@@ -27,10 +35,46 @@ func steadily(n int) func(int) int { return func(int) int { return n } }
 // A commit every ten seconds lets two messages a second through a window of 20; the
 // broker's queue holds 1,000 and loses the rest. Fifty a second pass instead.
 func TestSmallWindowLosesNothing(t *testing.T) {
-	for _, perLook := range []int{1, 2, 3, 4, 5} {
-		if most, _ := play(new(window), 20, 100, 36_000, steadily(perLook)); most > 800 {
+	for _, perLook := range []int{1, 2, 3, 4, 5, 10, 20, 50, 100} {
+		var w window
+		w.connected()
+		if most, _ := play(&w, 20, 100, 36_000, steadily(perLook)); most > 800 {
 			t.Errorf("%d messages a second: the broker keeps up to %d", 10*perLook, most)
 		}
+	}
+}
+
+// At four thousand a second, more would wait within one silence than a broker keeps;
+// once the limit is known there is no need of one, but for a proof each minute.
+func TestSmallWindowAtFullRate(t *testing.T) {
+	w := new(window)
+	w.connected()
+	most, commits := play(w, 20, 100, 6000, func(i int) int {
+		if i < 50 {
+			return 40 // while the limit is being found
+		}
+		return 400
+	})
+	if most > 1000 || w.limit != 20 {
+		t.Errorf("the broker keeps up to %d messages, limit %d; want at most 1,000, and 20", most, w.limit)
+	}
+	if want := 6000 * 400 / 20; commits < want*9/10 || commits > want {
+		t.Errorf("%d commits, want about %d: one for each full window", commits, want)
+	}
+}
+
+// A plant that sends forty messages at a time now and then looked like a broker with
+// that limit; the proof shows that it is none.
+func TestWrongLimitIsGivenUp(t *testing.T) {
+	w := &window{eager: true, proven: true, limit: 40, proof: 100}
+	_, commits := play(w, 10_000, 100, 6000, func(i int) int {
+		if i%10 == 1 {
+			return 40
+		}
+		return 0
+	})
+	if w.limit != 0 || commits > 90 {
+		t.Errorf("limit %d, %d commits in ten minutes; want none, and about 70", w.limit, commits)
 	}
 }
 
@@ -57,11 +101,11 @@ func TestBurstsAreLeftAlone(t *testing.T) {
 	}
 }
 
-// A limit that is raised at the broker is believed.
+// A limit that is raised at the broker is believed within half a minute.
 func TestRaisedWindowIsBelieved(t *testing.T) {
 	var w window
 	play(&w, 20, 100, 600, steadily(5))
-	if _, commits := play(&w, 10_000, 100, 6000, steadily(5)); commits > 70 {
-		t.Errorf("%d commits in ten minutes, want about 60", commits)
+	if _, commits := play(&w, 10_000, 100, 6000, steadily(5)); commits > 150 || w.limit != 0 {
+		t.Errorf("%d commits in ten minutes, limit %d; want about 60 and, in the first half minute, 75 more, and none", commits, w.limit)
 	}
 }

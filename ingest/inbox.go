@@ -39,12 +39,14 @@ type inbox struct {
 	crowded  bool          // waiting was in vain; the next take clears it
 	left     bool          // a message stayed with the broker; a new connection clears it
 	room     chan struct{} // one slot: readings were taken
+	mark     int           // unacknowledged messages at which reached is told; 0: never
+	reached  chan struct{} // one slot: so many wait
 
 	sending sync.Mutex // one acknowledger at a time, for the order
 }
 
 func newInbox(limit int, patience time.Duration) *inbox {
-	return &inbox{limit: limit, patience: patience, room: make(chan struct{}, 1)}
+	return &inbox{limit: limit, patience: patience, room: make(chan struct{}, 1), reached: make(chan struct{}, 1)}
 }
 
 // reconnect begins a new connection. What was not acknowledged is delivered
@@ -94,6 +96,7 @@ func (b *inbox) offer(m acknowledger, outcomes []Outcome) (ok, wait bool) {
 	if m != nil {
 		from = &message{acknowledger: m, open: n}
 		b.unacked = append(b.unacked, from)
+		b.tell()
 	}
 	for i := range outcomes {
 		if outcomes[i].Refusal == nil {
@@ -101,6 +104,27 @@ func (b *inbox) offer(m acknowledger, outcomes []Outcome) (ok, wait bool) {
 		}
 	}
 	return true, false
+}
+
+// tell passes on that as many messages wait as were asked for. mu is held.
+func (b *inbox) tell() {
+	if b.mark > 0 && len(b.unacked) >= b.mark {
+		select {
+		case b.reached <- struct{}{}:
+		default:
+		}
+	}
+}
+
+// tellAt asks to be told when n messages wait.
+func (b *inbox) tellAt(n int) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	if b.mark == n {
+		return
+	}
+	b.mark = n
+	b.tell()
 }
 
 func accepted(outcomes []Outcome) int {

@@ -124,3 +124,36 @@ func TestRoomIsWaitedFor(t *testing.T) {
 		}
 	})
 }
+
+// Whoever asks is told when so many messages wait, at once if they do already, and
+// again only when another comes.
+func TestReachedTells(t *testing.T) {
+	told := func(b *inbox) bool {
+		select {
+		case <-b.reached:
+			return true
+		default:
+			return false
+		}
+	}
+	b, got := newInbox(100, time.Second), &acks{}
+	put(t, b, numbered{got, 1}, 1)
+	put(t, b, numbered{got, 2}, 1)
+	if told(b) {
+		t.Error("told without being asked")
+	}
+	if b.tellAt(2); !told(b) {
+		t.Error("not told that two wait, as they did before")
+	}
+	if b.tellAt(2); told(b) {
+		t.Error("told twice")
+	}
+	if put(t, b, numbered{got, 3}, 1); !told(b) {
+		t.Error("not told that there are more")
+	}
+	batch, _ := b.take(nil)
+	b.stored(batch)
+	if put(t, b, numbered{got, 4}, 1); told(b) {
+		t.Error("told though one waits")
+	}
+}

@@ -55,6 +55,9 @@ func (e *Engine) Snapshot() Snapshot {
 	return s
 }
 
+// Through is [Snapshot.Through] alone.
+func (e *Engine) Through() int64 { return e.next }
+
 // until is [LoadState.Until] of a load; an idle one needs only its flow.
 func (e *Engine) until(load int, idle bool) int64 {
 	needs := e.equations[load].needs
