@@ -33,6 +33,8 @@ func (o object) hold(v value, s *Stream) {
 		v.fault("wants a volume flow, which tells how long the fluid is on its way; this one is a %v", s.FlowKind)
 	case s.Inlet.Constant():
 		v.fault("is about an inlet that changes, and this one is a constant")
+	case s.HumidityKind != 0:
+		v.fault("is of a stream whose humidity is measured, and the air of that humidity has left by the time it is compared")
 	}
 }
 
@@ -57,7 +59,10 @@ func (r *reader) stored(v value, s *Stream, d *Design) {
 	if isMetal {
 		s.Stored += metal.heatCapacity(T)
 	}
-	if !isContent && !isMetal {
+	switch {
+	case s.Inlet.Value > 0 && s.Outlet.Value > 0:
+		v.fault("lies between two constant temperatures, and never changes")
+	case !isContent && !isMetal:
 		o.need("content", "an amount of the fluid such as 250 L; or metal, such as 120 kg steel", "metal")
 	}
 }
