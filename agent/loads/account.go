@@ -8,6 +8,7 @@ type loadState struct {
 	Minute    minuteSum
 	Gap       gap
 	Counted   *counted // nil where the flow is a rate
+	Witness   *witness // nil where there is none
 	terms     terms
 	figure    Figure   // at one unit of flow a second where it is counted
 	fresh     bool     // figure was worked from the values held now
@@ -22,14 +23,21 @@ type terms struct {
 	gives        bool
 	counter      int     // tag that counts the flow; -1 where it is a rate
 	step         float64 // of the counter's numbers
+	witness      int     // tag of the witness; -1 where there is none
 }
 
 // newLoad returns the empty accounts of a load.
 func newLoad(cfg *Config, load int) loadState {
-	l := loadState{terms: terms{load: load, grid: cfg.Grid, bridge: cfg.Bridge, gives: cfg.Loads[load].gives(), counter: -1}}
-	if i := cfg.Loads[load].counter(cfg.Tags); i >= 0 {
-		l.terms.counter, l.terms.step = i, cfg.Tags[i].Resolution
-		l.Counted = new(counted)
+	of := &cfg.Loads[load]
+	l := loadState{terms: terms{
+		load: load, grid: cfg.Grid, bridge: cfg.Bridge, gives: of.gives(),
+		counter: of.counter(cfg.Tags), witness: -1,
+	}}
+	if i := l.terms.counter; i >= 0 {
+		l.Counted, l.terms.step = new(counted), cfg.Tags[i].Resolution
+	}
+	if of.HasWitness {
+		l.Witness, l.terms.witness = new(witness), of.Witness.Tag
 	}
 	for k, length := range Windows {
 		l.Windows[k] = newWindow(length, cfg.Grid)
@@ -43,6 +51,9 @@ func (l *loadState) resume(was loadState) {
 	if was.Counted == nil || l.Counted == nil {
 		was.Counted = l.Counted
 	}
+	if was.Witness == nil || l.Witness == nil {
+		was.Witness = l.Witness
+	}
 	for k := range l.Windows {
 		was.Windows[k].parts = l.Windows[k].parts
 	}
@@ -55,6 +66,9 @@ func (l *loadState) forget() {
 	l.Gap = gap{}
 	if l.Counted != nil {
 		l.Counted = new(counted)
+	}
+	if l.Witness != nil {
+		l.Witness = new(witness)
 	}
 }
 
@@ -81,16 +95,15 @@ func (l *loadState) book(g, span int64) {
 	}
 }
 
-// undecided returns how much of the time up to through is in no register yet.
-func (l *loadState) undecided(through int64) int64 {
-	from := through
+// decided returns up to where the time before through is in the registers.
+func (l *loadState) decided(through int64) int64 {
 	if l.Gap.open() {
-		from = l.from()
+		through = l.from()
 	}
 	if l.Counted != nil && len(l.Counted.Pieces) > 0 {
-		from = min(from, l.Counted.Pieces[0].From)
+		through = min(through, l.Counted.Pieces[0].From)
 	}
-	return through - from
+	return through
 }
 
 // roll moves the rolling windows on, by the live figure. Their heat is positive in the
@@ -111,7 +124,7 @@ func (l *loadState) roll(f *Figure, g, span int64) {
 // measured accounts for a figure over [g, g+span).
 func (l *loadState) measured(f *Figure, g, span int64) {
 	if l.Counted != nil {
-		l.Counted.piece(g, span).measure(f, g, span, l.terms.gives)
+		l.piece(g, span).measure(f, g, span, l.terms.gives)
 		return
 	}
 	l.enter(f, g, span)
@@ -130,7 +143,7 @@ func (l *loadState) bridged(duty float64, g, span int64) {
 		l.settle(&p, &c)
 		return
 	}
-	l.Counted.piece(g, span).bridge(heat, g, span)
+	l.piece(g, span).bridge(heat, g, span)
 }
 
 // missing accounts for [from, to) as time without a figure.
@@ -147,7 +160,7 @@ func (l *loadState) missing(from, to int64) {
 			p.Sum.miss(from, end-from)
 			l.settle(&p, &c)
 		} else {
-			l.Counted.piece(from, end-from).miss(from, end-from)
+			l.piece(from, end-from).miss(from, end-from)
 		}
 		from = end
 	}
@@ -159,9 +172,11 @@ func (l *loadState) missing(from, to int64) {
 // enter books a figure over [g, g+span), which lies in one minute.
 func (l *loadState) enter(f *Figure, g, span int64) {
 	l.turn(g)
+	heat := f.Duty * (float64(span) / 1e9)
 	l.Minute.measure(f, g, span, l.terms.gives)
-	l.Registers.book(givenUp(f.Duty*(float64(span)/1e9), l.terms.gives), span)
-	l.turn(g + span)
+	l.Registers.book(givenUp(heat, l.terms.gives), span)
+	l.Witness.serve(heat)
+	l.entered(g + span)
 }
 
 // enterBridged books heat that a straight line gives, J, positive where it was given up.
@@ -169,7 +184,8 @@ func (l *loadState) enterBridged(heat float64, g, span int64) {
 	l.turn(g)
 	l.Minute.bridge(heat, g, span)
 	l.Registers.bridge(heat, span)
-	l.turn(g + span)
+	l.Witness.lack(g + span)
+	l.entered(g + span)
 }
 
 // enterMissing books [from, to) as time without a figure.
@@ -179,13 +195,38 @@ func (l *loadState) enterMissing(from, to int64) {
 		l.turn(from)
 		end := min(to, floor(from, minute)+minute)
 		l.Minute.miss(from, end-from)
+		l.Witness.lack(end)
 		from = end
 	}
-	l.turn(to)
+	l.entered(to)
 }
 
-// turn closes the minute that has ended by g.
+// enterPiece books a part of a minute that was summed for one unit of flow a second.
+func (l *loadState) enterPiece(p *piece, rate float64) {
+	l.turn(p.From)
+	s := &p.Sum.Sum
+	l.Minute.add(s, p.From, rate)
+	l.Registers.add(s, rate)
+	l.Witness.serve(givenUp(s.Given-s.Taken, l.terms.gives) * rate)
+	if s.Bridged+s.Missing > 0 {
+		l.Witness.lack(p.To)
+	}
+	l.entered(p.To)
+}
+
+// entered closes the minute where it ends at g. With a witness it waits for the reading
+// that may end a span there.
+func (l *loadState) entered(g int64) {
+	if l.Witness == nil {
+		l.turn(g)
+	}
+}
+
+// turn closes what has ended by g.
 func (l *loadState) turn(g int64) {
+	if l.Witness != nil {
+		l.Witness.compare(g, &l.Minute.Sum)
+	}
 	if !l.Minute.Begun || g < l.Minute.Sum.Start+minute {
 		return
 	}

@@ -7,22 +7,11 @@ type counted struct {
 	Told   []count // those that came in a gap that is still open
 }
 
-// piece is a part of a minute that one count decides on.
+// piece is a part of a minute that one count decides on, and in which no span of the
+// witness ends.
 type piece struct {
 	From, To int64
 	Sum      minuteSum
-}
-
-// piece returns the sum of the present piece, widened to hold [g, g+span).
-func (c *counted) piece(g, span int64) *minuteSum {
-	n := len(c.Pieces)
-	if n == 0 || g >= c.Pieces[n-1].Sum.Sum.Start+minute {
-		c.Pieces = append(c.Pieces, piece{From: g})
-		n++
-	}
-	p := &c.Pieces[n-1]
-	p.To = g + span
-	return &p.Sum
 }
 
 // at returns the count that is known of the grid point g in an open gap.
@@ -34,6 +23,19 @@ func (c *counted) at(g int64) (count, bool) {
 		return count{}, false
 	}
 	return c.Told[0], true
+}
+
+// piece returns the sum of the present piece, widened to hold [g, g+span).
+func (l *loadState) piece(g, span int64) *minuteSum {
+	c := l.Counted
+	n := len(c.Pieces)
+	if n == 0 || g >= c.Pieces[n-1].Sum.Sum.Start+minute || l.Witness.cuts(g) {
+		c.Pieces = append(c.Pieces, piece{From: g})
+		n++
+	}
+	p := &c.Pieces[n-1]
+	p.To = g + span
+	return &p.Sum
 }
 
 // told takes a new count: it decides on the pieces, and on a gap once that has ended.
@@ -90,9 +92,17 @@ func (l *loadState) settle(p *piece, c *count) {
 	case c.Amount == 0:
 		l.enter(&Figure{Idle: true}, p.From, p.To-p.From)
 	default:
-		l.turn(p.From)
-		l.Minute.add(&p.Sum.Sum, p.From, c.rate())
-		l.Registers.add(&p.Sum.Sum, c.rate())
-		l.turn(p.To)
+		l.enterPiece(p, c.rate())
+	}
+}
+
+// bookCount rolls the windows of a load whose flow is counted, and decides on what has
+// waited for a count that has come at g.
+func (e *Engine) bookCount(load int, g, span int64) {
+	l := &e.loads[load]
+	f := e.live(load)
+	l.roll(&f, g, span)
+	if c := &e.tags[l.terms.counter].Count; c.To == g {
+		l.told(*c)
 	}
 }

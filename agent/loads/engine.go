@@ -247,6 +247,9 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		} else {
 			e.bookCount(i, g, span)
 		}
+		if l.Witness != nil {
+			e.attest(i, g)
+		}
 		l.book(g, span)
 		if len(l.closed) > 0 {
 			closed = append(closed, l.closed...)
@@ -254,15 +257,4 @@ func (e *Engine) book(g, span int64, closed []Minute) []Minute {
 		}
 	}
 	return closed
-}
-
-// bookCount rolls the windows of a load whose flow is counted, and decides on what has
-// waited for a count that has come at g.
-func (e *Engine) bookCount(load int, g, span int64) {
-	l := &e.loads[load]
-	f := e.live(load)
-	l.roll(&f, g, span)
-	if c := &e.tags[l.terms.counter].Count; c.To == g {
-		l.told(*c)
-	}
 }

@@ -76,7 +76,7 @@ func (l *loadState) snapshot(live Figure, through int64) LoadState {
 		Figure: live,
 		Totals: l.Registers.totals(),
 	}
-	s.Undecided = l.undecided(through)
+	s.Undecided = through - l.decided(through)
 	if l.figure.At == 0 {
 		s.Figure.Fault, s.Figure.Reason = NoReading, "no reading yet"
 	}
