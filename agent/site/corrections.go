@@ -13,6 +13,9 @@ func (r *reader) corrections(stream object, s *Stream, d *Design) {
 		return
 	}
 	o := v.object("loads.*.stream.corrections")
+	if !s.Flow.Constant() && r.site.Tags[s.Flow.Tag].Counter != nil {
+		v.fault("want a flow at every instant, and this one is counted by tag %q", r.site.Tags[s.Flow.Tag].Name)
+	}
 	if v, ok := o.get("pump"); ok {
 		s.Pump, _ = r.source(v, unit.Power)
 		s.HasPump = true

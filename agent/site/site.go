@@ -65,7 +65,7 @@ type Tag struct {
 	// Resolution is the step of the tag's numbers, and Deadband how far the quantity may
 	// move before its source tells of it; SI, 0 where the file gives none.
 	Resolution, Deadband float64
-	Counter              *Counter // the tag is a register that only counts up; its Accuracy is of the rate
+	Counter              *Counter // the tag is a register that only counts up; its Accuracy is a part of what it counts
 	// OnChange says that the source reports by exception, and a reading holds as long as
 	// the source is alive, which the tag at the index Alive of Site.Tags tells.
 	OnChange bool

@@ -65,6 +65,9 @@ func (r *reader) tag(e entry) Tag {
 	}
 	if v, ok := o.need("accuracy", accuracyForms); ok && known {
 		t.Accuracy = r.accuracy(v, t.unitOfError(), t.Offset)
+		if t.Counter != nil && t.Accuracy.Abs > 0 {
+			v.fault("is not in proportion to what is counted, as that of a counter is; want such as 0.5 %% of reading, and its step as resolution")
+		}
 	}
 	if v, ok := o.get("range"); ok && known && t.Counter == nil {
 		if lo, hi, ok := r.span(v, t.Unit); ok {
@@ -84,7 +87,7 @@ func (r *reader) tag(e entry) Tag {
 	return t
 }
 
-// unitOfError is the unit that the accuracy of a tag is in: that of a counter is of its
+// unitOfError is the unit in which the accuracy of a tag is read: of a counter, that of its
 // rate.
 func (t *Tag) unitOfError() unit.Unit {
 	u := t.Unit
