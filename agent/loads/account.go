@@ -9,6 +9,8 @@ type loadState struct {
 	Gap       gap
 	Counted   *counted // nil where the flow is a rate
 	Witness   *witness // nil where there is none
+	Trends    []trend  // of the tags whose change counts; see trendsOf
+	Hold      queue    // what is between the thermometers of a stream that has a hold
 	terms     terms
 	figure    Figure   // at one unit of flow a second where it is counted
 	fresh     bool     // figure was worked from the values held now
@@ -42,6 +44,7 @@ func newLoad(cfg *Config, load int) loadState {
 	for k, length := range Windows {
 		l.Windows[k] = newWindow(length, cfg.Grid)
 	}
+	l.Trends = trendsOf(cfg, load)
 	return l
 }
 
@@ -57,6 +60,7 @@ func (l *loadState) resume(was loadState) {
 	for k := range l.Windows {
 		was.Windows[k].parts = l.Windows[k].parts
 	}
+	was.Trends = resumeTrends(l.Trends, was.Trends)
 	*l = was
 }
 
@@ -70,6 +74,7 @@ func (l *loadState) forget() {
 	if l.Witness != nil {
 		l.Witness = new(witness)
 	}
+	l.Hold = queue{}
 }
 
 // book accounts for the present figure over [g, g+span): as soon as it is decided.

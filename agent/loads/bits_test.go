@@ -50,10 +50,10 @@ func run(e *Engine, readings []Reading, cut func() int) {
 func fingerprint(e *Engine) []uint64 {
 	var bits []uint64
 	for _, l := range e.Snapshot().Loads {
-		for _, v := range []float64{l.Given, l.Taken, l.Figure.Duty, l.Figure.Uncertainty, l.Figure.Random, l.Figure.Variance, l.Means[0].Duty, l.Means[2].Duty, l.Means[2].Coverage} {
+		for _, v := range []float64{l.Given, l.Taken, l.Figure.Duty, l.Figure.Uncertainty, l.Figure.Rate, l.Figure.Random, l.Figure.Variance, l.Figure.Rate, l.BridgedGiven, l.BridgedTaken, l.Means[0].Duty, l.Means[2].Duty, l.Means[2].Coverage} {
 			bits = append(bits, math.Float64bits(v))
 		}
-		bits = append(bits, uint64(l.Measured), uint64(l.Missing))
+		bits = append(bits, uint64(l.Measured), uint64(l.Bridged), uint64(l.Missing))
 	}
 	return bits
 }

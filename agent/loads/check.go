@@ -20,12 +20,7 @@ func (c *Config) check() error {
 	}
 	for i := range c.Loads {
 		l := &c.Loads[i]
-		err := l.Stream.check()
-		if l.Vessel != nil {
-			err = l.Vessel.check()
-		}
-		err = errors.Join(err, l.checkCounters(c.Tags))
-		if err != nil {
+		if err := errors.Join(c.checkLoad(l), l.checkCounters(c.Tags)); err != nil {
 			errs = append(errs, fmt.Errorf("load %q: %w", l.Name, err))
 		}
 	}
@@ -56,6 +51,20 @@ func (l *Load) checkCounters(tags []Tag) error {
 	}
 	if c := &l.Stream.Corrections; l.counter(tags) >= 0 && (c.HasPump || c.Hold > 0 || c.Stored > 0) {
 		return errors.New("corrections of a stream whose flow is counted: a flow at every instant is wanted for them")
+	}
+	return nil
+}
+
+func (c *Config) checkLoad(l *Load) error {
+	err := l.Stream.check()
+	if l.Vessel != nil {
+		err = l.Vessel.check()
+	}
+	if err != nil {
+		return err
+	}
+	if sources, over := l.followed(); len(sources) > 0 && over < leastPoints*c.Grid {
+		return fmt.Errorf("a rate is fitted over %g s, in which there are less than %d steps of the grid of %g s", float64(over)/1e9, leastPoints, float64(c.Grid)/1e9)
 	}
 	return nil
 }

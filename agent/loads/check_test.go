@@ -66,6 +66,23 @@ func TestNewRefusesCorrections(t *testing.T) {
 	}
 }
 
+func TestNewRefusesWhatTakesTwo(t *testing.T) {
+	for _, tt := range []struct {
+		change func(*Config)
+		want   string
+	}{
+		{func(c *Config) { c.Loads[0].Stream.Stored, c.Loads[0].Stream.StoredOver = 1, 2*second }, "less than 3 steps of the grid of 1 s"},
+		{func(c *Config) { c.Tags[flow].Counter, c.Loads[0].Stream.Hold = new(Counter), 1 }, `flow is counted`},
+		{func(c *Config) { c.Tags[flow].Counter, c.Loads[0].Stream.HasPump = new(Counter), true }, `flow is counted`},
+	} {
+		cfg := plant(liquid)
+		tt.change(&cfg)
+		if _, err := New(cfg); err == nil || !strings.Contains(err.Error(), tt.want) {
+			t.Errorf("error %v, want one with %q", err, tt.want)
+		}
+	}
+}
+
 // Everything that is wrong is told at once.
 func TestNewTellsAllFaults(t *testing.T) {
 	cfg := plant(liquid)

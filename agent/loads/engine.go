@@ -20,8 +20,10 @@ type Engine struct {
 	tags      []tagState
 	loads     []loadState
 	tally     []Tally
-	users     [][]int // loads that read each tag
-	onChange  []int   // tags that report by exception
+	users     [][]int    // loads that read each tag
+	onChange  []int      // tags that report by exception
+	follows   [][]follow // trends that each tag's readings go into
+	holds     []int      // loads with a hold
 	counters  []bounded
 }
 
@@ -40,11 +42,12 @@ func New(cfg Config) (*Engine, error) {
 		return nil, err
 	}
 	e := &Engine{
-		cfg:   cfg,
-		tags:  make([]tagState, len(cfg.Tags)),
-		loads: make([]loadState, len(cfg.Loads)),
-		tally: make([]Tally, len(cfg.Tags)),
-		users: make([][]int, len(cfg.Tags)),
+		cfg:     cfg,
+		tags:    make([]tagState, len(cfg.Tags)),
+		loads:   make([]loadState, len(cfg.Loads)),
+		tally:   make([]Tally, len(cfg.Tags)),
+		users:   make([][]int, len(cfg.Tags)),
+		follows: make([][]follow, len(cfg.Tags)),
 	}
 	for i := range cfg.Tags {
 		if cfg.Tags[i].OnChange {
@@ -52,12 +55,16 @@ func New(cfg Config) (*Engine, error) {
 		}
 	}
 	for i := range e.loads {
-		q, err := equationOf(&cfg.Loads[i].Stream)
+		q, err := cfg.Loads[i].equation()
 		if err != nil {
 			return nil, fmt.Errorf("load %q: %w", cfg.Loads[i].Name, err)
 		}
 		e.equations = append(e.equations, q)
 		e.enlist(i)
+		e.enlistTrends(i)
+		if q.Stream != nil && q.Hold > 0 {
+			e.holds = append(e.holds, i)
+		}
 		e.loads[i] = newLoad(&cfg, i)
 	}
 	e.enlistCounters()
@@ -88,7 +95,9 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 		g := e.next
 		e.arrive(g)
 		span := e.cfg.Grid
-		if !e.evaluateAll(g) {
+		measured := e.evaluateAll(g)
+		e.carry(g)
+		if !measured {
 			span = e.silence(g)
 			e.lapse(g + span - e.cfg.Grid)
 		}
@@ -117,7 +126,7 @@ func (e *Engine) Adopt(b Beat) {
 	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin()) && next > e.next {
 		for e.next < next {
 			e.arrive(e.next)
-			span := min(e.silence(e.next), next-e.next)
+			span := min(e.quiet(e.next), next-e.next)
 			e.next += span
 			e.lapse(e.next - e.cfg.Grid)
 		}
@@ -189,6 +198,7 @@ func (e *Engine) reach(g int64) {
 		t, tag := &e.tags[i], &e.cfg.Tags[i]
 		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g, tag.MaxAge, tag.scatters()) {
 			e.touch(i)
+			e.follow(i)
 		}
 	}
 }
@@ -206,7 +216,7 @@ func (e *Engine) evaluateAll(g int64) bool {
 	any := false
 	for i := range e.loads {
 		l := &e.loads[i]
-		if !l.fresh || g >= l.figure.Until {
+		if !l.fresh || g >= l.figure.Until || l.Hold.holds() {
 			l.figure, l.fresh = e.evaluate(i, g), true
 		}
 		l.figure.At = g
@@ -218,11 +228,26 @@ func (e *Engine) evaluateAll(g int64) bool {
 	return any
 }
 
-// silence returns how long from g on nothing can change while no load has a
-// figure: up to the next waiting reading or the end of event time, on the grid. It
+// silence returns how long from g on nothing can change while no load has a figure: no
+// reading comes, and none is to be worked anew.
+func (e *Engine) silence(g int64) int64 {
+	span := e.quiet(g)
+	for i := range e.loads {
+		l := &e.loads[i]
+		if l.Hold.holds() {
+			return e.cfg.Grid
+		}
+		if at := l.figure.Until; at < g+span {
+			span = max(ceil(at, e.cfg.Grid)-g, e.cfg.Grid)
+		}
+	}
+	return span
+}
+
+// quiet returns how long from g on no reading comes: up to the next waiting reading or the end of event time, on the grid. It
 // ends with the minute g lies in, or where g begins one, with a later minute, so
 // that every minute which holds anything is closed on its own.
-func (e *Engine) silence(g int64) int64 {
+func (e *Engine) quiet(g int64) int64 {
 	until := floor(e.through, e.cfg.Grid)
 	for i := range e.tags {
 		if p := e.tags[i].Pending; len(p) > 0 {

@@ -15,6 +15,9 @@ type held struct {
 // evaluate works the figure of a load at the grid point g from the values held
 // then. It depends on nothing else.
 func (e *Engine) evaluate(load int, g int64) Figure {
+	if e.cfg.Loads[load].Vessel != nil {
+		return e.vessel(load, g)
+	}
 	q := &e.equations[load]
 	f := Figure{At: g, Until: math.MaxInt64}
 	var x State
@@ -22,7 +25,7 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 	if !e.flow(load, &f, &x.Flow, &d[PartFlow]) {
 		return f
 	}
-	if counted := e.loads[load].Counted != nil; !counted && (x.Flow == 0 || math.Abs(x.Flow) <= q.IdleBelow) {
+	if e.loads[load].Counted == nil && q.idle(x.Flow) {
 		f.Idle = true
 		return f
 	}
@@ -34,15 +37,23 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 		e.read(&f, q.Pressure, &x.Pressure, &d[PartPressure]) &&
 		e.read(&f, q.OutletPressure, &x.OutletPressure, &d[PartOutletPressure]) &&
 		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &d[PartHumidity])) &&
-		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(doubt)))
-	if !ok {
+		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(doubt))) &&
+		(!q.HasPump || e.read(&f, q.Pump, &x.Pump, &d[PartPump])) &&
+		e.delay(load, &f, &x)
+	var uRise float64
+	if !ok || !e.rise(load, &f, &x, &uRise) {
 		return f
 	}
 	if q.OutletPressure == q.Pressure {
 		d[PartOutletPressure] = doubt{} // moves with the inlet's
 	}
-	return q.figure(f, &x, &d)
+	f = q.figure(f, &x, &d)
+	q.storedSpread(&f, &x, uRise)
+	return f
 }
+
+// idle reports whether nothing is taken to flow.
+func (q *equation) idle(flow float64) bool { return flow == 0 || math.Abs(flow) <= q.IdleBelow }
 
 func (q *equation) figure(f Figure, x *State, d *[PartCp]doubt) Figure {
 	m, err := q.medium(x)

@@ -41,7 +41,8 @@ func (f Fault) String() string {
 
 // Figure is the duty of one load at one grid point, with what it was worked
 // from. Where Fault is set, only Fault, Reason and At mean anything; where Idle
-// is set, duty is zero and the temperatures are not looked at.
+// is set, duty is zero: the temperatures of a stream are not looked at, and the rate of a
+// vessel is not told from rest.
 type Figure struct {
 	At          int64
 	Fault       Fault
@@ -56,7 +57,7 @@ type Figure struct {
 	Variance float64
 	MassFlow float64 // kg/s
 	Density  float64 // at the meter, kg/m³
-	Inlet    float64 // K
+	Inlet    float64 // K; where the stream has a hold, what the parcel that leaves came in with
 	Outlet   float64 // K
 	// Content is the temperature of a vessel's content, K, whose mass is Mass, kg, and
 	// Rate its fitted rise, K/s; 0 of a stream.

@@ -12,9 +12,10 @@ type gap struct {
 func (p *gap) open() bool { return p.To != 0 }
 
 // mayBridge reports whether the fault at g leaves a gap open, or opens one: data are
-// missing, and there is nothing else that speaks against the last duty.
+// missing, or too few are back yet to tell a rate, and there is nothing else that speaks
+// against the last duty.
 func (l *loadState) mayBridge(f *Figure, g int64) bool {
-	return l.terms.bridge > 0 && (f.Fault == NoReading || f.Fault == Stale) &&
+	return l.terms.bridge > 0 && (f.Fault == NoReading || f.Fault == Stale || f.Fault == Fitting) &&
 		(l.Gap.open() || l.Gap.Last != 0 && g == l.Gap.Last+l.terms.grid)
 }
 

@@ -68,7 +68,10 @@ type Tag struct {
 	// OnChange says that the source reports by exception: a reading holds, whatever its
 	// age, while the source is alive. Alive is then the index of the tag that tells so:
 	// a reading of it that is not zero holds for its own MaxAge, and one of zero says
-	// that the source has gone. After a lapse a new reading is wanted.
+	// that the source has gone. A reading of the tag itself is a sign of life as well, for
+	// as long, so that a source may tell its values before it beats. After a lapse a new
+	// reading is wanted: what was read at or before the last grid point without a sign of
+	// life does not hold.
 	OnChange bool
 	Alive    int
 	// Counter is set where the tag is a register that only rises.
@@ -148,20 +151,57 @@ type Stream struct {
 // Corrections are what a stream may be corrected for. The zero value has none.
 type Corrections struct {
 	// Pump is the power that a pump or fan between the two thermometers leaves in the
-	// stream as heat, W: the stream serves it as well as what the thermometers show.
+	// stream as heat, W: a stream that gives heat gives it up as well as what the
+	// thermometers show, and one that takes heat has taken so much less. It counts only
+	// while the stream flows.
 	Pump    Source
 	HasPump bool
 	// Hold is the volume between the two thermometers, m³: the outlet is compared with
-	// the inlet of the parcel that leaves now (plug flow). 0 for none.
+	// the inlet of the parcel that leaves now. 0 for none. It is plug flow: nothing mixes but
+	// within a sixtieth of the hold, as much volume leaves as passes the meter, at the
+	// meter's density (a flow by mass is taken at that of the inlet), and how far off Hold
+	// may be is not in the uncertainty. A stopped flow stands; heat that it loses to the
+	// room counts as served. Until the hold has been filled once, after the start and after
+	// each time without flow, inlet or its pressure, the load is [Fitting]: to compare with
+	// what enters now would book what the content stores. A reverse flow empties it.
 	Hold float64
 	// Stored is the heat capacity of what lies between the thermometers, content and
-	// metal, J/K; its rise or fall over StoredOver, ns, is not the load's. 0 for none.
+	// metal, J/K: C times the rise of the mean of inlet and outlet, fitted over StoredOver,
+	// ns, is not the load's. 0 for none. With a Hold it is that of the metal alone, since
+	// parcels keep account of the content. It is taken to be known within 10 % (common
+	// practice for what drawings tell, no source), in the share of the content. The rate is
+	// that of the middle of the span; too few readings to tell it are [Fitting]. Without a
+	// flow nothing is corrected.
 	Stored     float64
 	StoredOver int64
 }
 
 // Vessel is a closed content whose temperature tells the heat that it takes up or
-// gives: a tank, a batch, a bed.
+// gives: a tank, a batch, a bed. Its duty is
+//
+//	Q = ± (m·c + Shell)·dT/dt
+//
+// with the slope of the line through the readings of the last Over, in which those of each
+// sixtieth of it count as one of their weight, and c of the fluid at their mean: cp, or of a
+// Rigid vessel cv. What a duty changes comes half of Over late; over a longer time the heat
+// is that of the content half of Over before either end. Less than three readings, or
+// readings over less than half of Over, are [Fitting].
+//
+// Noise has a slope as well, and would raise both registers for ever. So the content is at
+// rest where the duty is within IdleBelow, or within two of its random standard
+// uncertainties, of zero. With normal noise and 60 readings that leaves in each register
+// 0.05 of one such uncertainty on the mean, where there would be 0.40; IdleBelow at four of
+// them leaves next to nothing. The cost: of a steady duty of 1, 2, 3 and 4 standard uncertainties
+// 40, 70, 92 and 99 % are booked. A tank of 500 kg of water read each 10 s with a scatter of
+// 0.05 K has one of 78 W over ten minutes; it falls with Over to the power of 3/2. For losses
+// that are slow and small, Over must be long.
+//
+// An offset of the thermometer cancels in a difference of temperatures. What lasts is in the
+// share of the content: its amount, the gain of the thermometer's scale (the relative part of
+// its accuracy), the wall within 10 % (common practice, no source), and the temperature at
+// which c and density are taken. The scatter about the line is the random part. Its variance
+// is taken to last for Over, which is an upper bound: over a long time slopes add up to a
+// difference of two temperatures, however many they are.
 type Vessel struct {
 	Fluid       thermo.Fluid
 	Temperature Source // K
@@ -176,8 +216,10 @@ type Vessel struct {
 	Shell float64
 	// Over is the span of readings through which the rate is fitted, ns.
 	Over int64
-	// Still is the change of the content over that span, as a fraction, above which
-	// the vessel is being filled or drawn, and its heat is not told by its temperature.
+	// Still is the change of the content over that span, from the least to the greatest
+	// reading as a fraction of the greatest, above which the vessel is being filled or
+	// drawn, and its heat is not told by its temperature ([Moving]). It must be more than
+	// what the readings of a still vessel scatter.
 	Still float64
 	// Gives is true where the content gives heat up in the load's service.
 	Gives bool

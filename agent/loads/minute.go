@@ -36,7 +36,7 @@ type Minute struct {
 	MassFlow          float64 // kg/s
 	Inlet, Outlet     float64 // K
 	Pressure          float64 // Pa
-	Content           float64 // K, of a vessel
+	Content           float64 // K, of a vessel, at rest or not
 }
 
 // Doubt returns what leaves the mean duty of the measured time open: the standard
@@ -109,6 +109,8 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 		s.Taken -= heat
 	}
 	s.DutyMin, s.DutyMax = min(s.DutyMin, f.Duty), max(s.DutyMax, f.Duty)
+	s.Content += f.Content * dt
+	s.Random += f.Variance * dt
 	if f.Idle {
 		s.Idle += span
 		return
@@ -120,12 +122,10 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 	for p, share := range f.Share {
 		s.Systematic[p] += share * dt
 	}
-	s.Random += f.Variance * dt
 	s.MassFlow += f.MassFlow * dt
 	s.Inlet += f.Inlet * dt
 	s.Outlet += f.Outlet * dt
 	s.Pressure += f.Pressure * dt
-	s.Content += f.Content * dt
 }
 
 // add adds a part of the minute, that of g, which was summed for one unit of flow a
@@ -171,11 +171,11 @@ func (m *minuteSum) close(load int) (Minute, bool) {
 	s.Duty /= measured
 	s.Uncertainty /= measured
 	s.MassFlow /= measured
+	s.Content /= measured
 	if flowing := float64(s.Measured-s.Idle) / 1e9; flowing > 0 {
 		s.Inlet /= flowing
 		s.Outlet /= flowing
 		s.Pressure /= flowing
-		s.Content /= flowing
 	}
 	return s, true
 }

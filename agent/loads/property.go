@@ -20,7 +20,7 @@ func (m *medium) property(T, p float64) property {
 // without takes one of the independent parts of a standard uncertainty out of it.
 func without(u, part float64) float64 { return math.Sqrt(max(u*u-part*part, 0)) }
 
-// property fills in what the fluid's figures leave open of the duty. The errors of cp at
+// property fills in what the fluid's figures leave open of the duty that the stream carries. The errors of cp at
 // both ends are taken for one, the greater of the two. An error of the strength moves the
 // enthalpy difference by the mean of what it does to cp at both ends, and a volume meter's
 // density with it.

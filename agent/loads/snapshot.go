@@ -58,10 +58,10 @@ func (e *Engine) Snapshot() Snapshot {
 // Through is [Snapshot.Through] alone.
 func (e *Engine) Through() int64 { return e.next }
 
-// until is [LoadState.Until] of a load; an idle one needs only its flow.
+// until is [LoadState.Until] of a load; an idle stream needs only its flow.
 func (e *Engine) until(load int, idle bool) int64 {
 	needs := e.equations[load].needs
-	if idle {
+	if idle && e.cfg.Loads[load].Vessel == nil {
 		needs = needs[:1]
 	}
 	until := int64(math.MaxInt64)

@@ -63,7 +63,7 @@ func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt,
 		random += c * c * d.scatter
 		f.Variance += c * c * d.rate
 	}
-	q.property(f, m, x, centre.Duty)
+	q.property(f, m, x, centre.Duty-q.correction(x))
 	f.Random = math.Sqrt(random)
 	f.Uncertainty = math.Sqrt(sumOfSquares(f.Share[:]) + random)
 	return nil
@@ -146,6 +146,8 @@ func (q *equation) moved(x State, part Part, by float64) State {
 		x.OutletPressure += by
 	case PartHumidity:
 		x.Humidity += by
+	case PartPump:
+		x.Pump += by
 	}
 	return x
 }

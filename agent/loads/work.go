@@ -14,6 +14,8 @@ type State struct {
 	Pressure, OutletPressure float64 // absolute Pa
 	Humidity                 float64 // at the inlet, in the unit of the stream's HumidityKind, where it has one
 	Coil                     float64 // K, where the stream has one
+	Pump                     float64 // W that the pump leaves in the stream, where it has one
+	Rise                     float64 // K/s by which what is stored warms, where the stream is corrected for it
 }
 
 // Result is what the heat equation gives for one state.
@@ -29,7 +31,8 @@ type Result struct {
 //
 //	Q = ± m·(h(inlet) − h(outlet))
 //
-// positive in the stream's service. A volume flow becomes mass with the density in the
+// positive in the stream's service, with x.Pump and x.Rise for the corrections that s has
+// of these; its hold is not looked at. A volume flow becomes mass with the density in the
 // meter's pipe, a molar flow with the molar mass. Of a [thermo.Wet] gas h is the
 // sensible part, at the composition of the inlet. The error says which end is outside
 // the fluid's range (a [*thermo.RangeError]) or within s.Margin of boiling or of the
@@ -65,10 +68,21 @@ type equation struct {
 	needs    []Source     // the flow first
 }
 
+// equation returns that of a load's stream; of a vessel, what it needs.
+func (l *Load) equation() (equation, error) {
+	if v := l.Vessel; v != nil {
+		return equation{needs: []Source{v.Temperature, v.Pressure, v.Content}}, nil
+	}
+	return equationOf(&l.Stream)
+}
+
 // equationOf returns the equation of s. The error says that the humidity of its fluid
 // cannot be told.
 func equationOf(s *Stream) (equation, error) {
 	q := equation{Stream: s, declared: mediumOf(s.Fluid), needs: []Source{s.Flow, s.Inlet, s.Outlet, s.Pressure, s.OutletPressure}}
+	if s.HasPump {
+		q.needs = append(q.needs, s.Pump)
+	}
 	if s.HumidityKind != 0 {
 		var ok bool
 		if q.humid, ok = s.Fluid.(thermo.Humid); !ok {
@@ -168,5 +182,5 @@ func (q *equation) heat(m *medium, x *State, in, out *thermo.Balance) (density, 
 	if q.Gives {
 		duty = -duty
 	}
-	return density, mass, duty
+	return density, mass, duty + q.correction(x)
 }

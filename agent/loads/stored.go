@@ -1,0 +1,66 @@
+package loads
+
+import (
+	"fmt"
+	"math"
+)
+
+// rise puts in place how fast the content between the thermometers warms, K/s: the mean of
+// the fitted rates of inlet and outlet, with its standard uncertainty. It marks f and
+// returns false where too few readings tell.
+func (e *Engine) rise(load int, f *Figure, x *State, u *float64) bool {
+	q := &e.equations[load]
+	if q.Stored == 0 {
+		return true
+	}
+	for i, src := range [...]Source{ofInlet: q.Inlet, ofOutlet: q.Outlet} {
+		if src.Tag < 0 {
+			continue
+		}
+		tag, t := &e.cfg.Tags[src.Tag], &e.loads[load].Trends[i]
+		f.Until = min(f.Until, t.until(f.At))
+		line := t.fit(f.At, tag.OnChange)
+		if why := line.short(q.StoredOver); why != "" {
+			*f = f.fail(Fitting, fmt.Sprintf("tag %q: %s", tag.Name, why))
+			return false
+		}
+		x.Rise += line.Rate / 2
+		*u = math.Hypot(*u, line.uncertainty(tag)/2)
+	}
+	return true
+}
+
+// correction is what the corrections of the stream add to its duty, W. Of a stream that
+// gives heat
+//
+//	P − C·dT/dt
+//
+// because it gives up what the pump leaves in it as well, but not what its content gives
+// up by cooling; of one that takes heat the same, the other way.
+func (q *equation) correction(x *State) float64 {
+	by := -q.Stored * x.Rise
+	if q.HasPump {
+		by += x.Pump
+	}
+	if q.Gives {
+		return by
+	}
+	return -by
+}
+
+// storedSpread adds the uncertainty of the stored heat: of C, which drawings tell, to what
+// lasts, and of the rise, u in K/s, to what does not. Over a long time what is stored adds
+// up to nothing, so that the variance is an upper bound.
+func (q *equation) storedSpread(f *Figure, x *State, u float64) {
+	if q.Stored == 0 || !f.Measured() {
+		return
+	}
+	f.Share[PartContent] = -q.Stored * x.Rise * shellHalf / math.Sqrt(3)
+	if !q.Gives {
+		f.Share[PartContent] *= -1
+	}
+	random := q.Stored * u
+	f.Random = math.Hypot(f.Random, random)
+	f.Variance += random * random * float64(q.StoredOver) / 1e9
+	f.Uncertainty = math.Sqrt(f.Uncertainty*f.Uncertainty + f.Share[PartContent]*f.Share[PartContent] + random*random)
+}
