@@ -15,6 +15,12 @@
 // even below the dew point, with a [Remark] that says so; a liquid near freezing has
 // one too. Every tag that a load names is needed for its duty.
 //
+// A duty carries its standard uncertainty by the law of propagation (JCGM 100:2008). What
+// lasts is told by its signed parts: accuracies, dead bands, rounding, the fluid's own
+// figures, the strength of a mixture, of which one error moves cp and density at once.
+// Over a period each part adds up as it stands. What changes from reading to reading is
+// told by the differences between them, and adds up as variances do.
+//
 // Instants and spans are int64 nanoseconds (Unix time); temperatures K,
 // pressures absolute Pa, mass flow kg/s, duty W, heat J.
 package loads

@@ -6,12 +6,17 @@ package loads
 // equal weight while there are few.
 //
 // Half the mean square of successive differences is the variance of noise, whatever the
-// slow course of the quantity (J. von Neumann, Ann. Math. Stat. 12, 1941). Of a random walk
-// it is the mean square of what has been missed while a reading is held; that the walk's
-// integral is off by only two thirds of it is not counted on. A quantity that climbs
-// steadily is followed half a step behind, which no count of readings lessens: over a
-// period it leaves half the time between two readings times the difference of the
-// quantity between end and beginning, and comes back on the way down.
+// slow course of the quantity (J. von Neumann et al., Ann. Math. Stat. 12, 1941, from
+// memory). What a moving quantity adds to it is more than what is missed of its integral
+// while a reading is held: in standard uncertainty √1.5 times for a random walk, up to √6
+// times where it keeps coming back, and once where it has no memory.
+//
+// Two things the differences cannot tell. Noise with a memory looks like a quantity that
+// moves: where each error keeps a half of the one before, the uncertainty of an energy is
+// 0.41 of what it should be. And a quantity that climbs steadily is followed half a step
+// behind, which no count of readings lessens: over a period it leaves half the time
+// between two readings times the difference of the quantity between end and beginning,
+// and comes back on the way down.
 type scatter struct {
 	Seen   uint8   // differences in the means, up to steadyAfter
 	Square float64 // mean of d², in the tag's unit squared

@@ -36,11 +36,10 @@ func (p Part) String() string {
 // spread fills the figure's uncertainty: each input is moved by its standard
 // uncertainty up and down and half the change of duty is its contribution
 // (JCGM 100:2008, 5.1.3, note 2), and in proportion that of what else may be wrong with
-// it. What the errors
-// of a matched pair have in common is a contribution of its own, so that those that are
-// left are independent of each other and add as root of the sum of squares. The error is
-// that of the heat equation where an input can be moved neither way inside the fluid's
-// range.
+// it. What the errors of a matched pair have in common is a contribution of its own, so
+// that those that are left are independent of each other and add as root of the sum of
+// squares. The error is that of the heat equation where an input can be moved neither way
+// inside the fluid's range.
 func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt, centre *Result) error {
 	var random float64
 	for part := range inputs {
