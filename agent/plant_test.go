@@ -2,11 +2,52 @@ package agent
 
 import (
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
 	"heatreeve/agent/loads"
+	"heatreeve/ingest"
 )
+
+// What the file tells beyond flows and temperatures reaches the engine.
+func TestPlantOfTheMaltings(t *testing.T) {
+	m := newMaltings(t)
+	cfg := plantOf(m.site)
+	if cfg.Bridge != 15*60*sec || len(cfg.Tags) != 23 {
+		t.Errorf("bridge %d ns, %d tags", cfg.Bridge, len(cfg.Tags))
+	}
+	tag := func(name string) loads.Tag {
+		i := slices.IndexFunc(cfg.Tags, func(t loads.Tag) bool { return t.Name == name })
+		if i < 0 {
+			t.Fatalf("no tag %q", name)
+		}
+		return cfg.Tags[i]
+	}
+	if c := tag("wash/total"); c.Counter == nil || c.Counter.Modulus != 1e5 || !(math.Abs(c.Counter.Largest*180-1) <= 1e-14) || c.Resolution != 0.01 || c.MaxAge != 600*sec {
+		t.Errorf("wash/total: %+v, %+v", c, c.Counter)
+	}
+	if c := tag("cold/in"); !c.OnChange || cfg.Tags[c.Alive].Name != "ostrel/cold/beat" || cfg.Tags[c.Alive].MaxAge != 30*sec || c.Deadband != 0.2 || c.Counter != nil {
+		t.Errorf("cold/in: %+v", c)
+	}
+	brew, wash, kettle, buffer := cfg.Loads[0], cfg.Loads[1], cfg.Loads[4].Vessel, cfg.Loads[5].Vessel
+	if s := brew.Stream; s.Pair != 0.9 || !s.HasPump || cfg.Tags[s.Pump.Tag].Name != "brew/pump" || !(s.Stored > 3.9e6) || s.StoredOver != 300*sec || brew.HasWitness || brew.Vessel != nil {
+		t.Errorf("brew house: %+v", brew)
+	}
+	if !wash.HasWitness || cfg.Tags[wash.Witness.Tag].Name != "wash/heat" || cfg.Loads[3].Stream.Hold != 0.09 {
+		t.Errorf("keg washer: %+v; yeast cooler: %+v", wash, cfg.Loads[3])
+	}
+	if kettle.ContentKind != loads.ContentVolume || kettle.Shell != 2400*477 || kettle.Over != 600*sec || kettle.Still != 0.005 || kettle.IdleBelow != 5e3 || kettle.Margin != 2 || kettle.Gives || kettle.Rigid {
+		t.Errorf("mash kettle: %+v", kettle)
+	}
+	if !buffer.Rigid || buffer.Content.Value != 6 || !cfg.Loads[6].Vessel.Gives {
+		t.Errorf("buffer: %+v", buffer)
+	}
+	signals := signalsOf(m.site)
+	if beat, state := signals[21].Liveness, signals[22].Liveness; beat == nil || beat.Online != "" || state == nil || *state != (ingest.Liveness{Online: "up", Offline: "down"}) {
+		t.Errorf("signs of life: %+v, %+v", beat, state)
+	}
+}
 
 const coolerSite = `
 site: Mill

@@ -70,6 +70,30 @@ func TestReadmeSiteFileIsGood(t *testing.T) {
 	}
 }
 
+// So are the counters, vessels and corrections that it shows further down.
+func TestReadmeShowsGoodCounters(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "### Counters, changes, vessels, corrections\n\n```yaml\n")
+	text, words, closed := strings.Cut(rest, "```")
+	if !ok || !closed {
+		t.Fatal("the README shows no counters")
+	}
+	s, err := site.Parse("README.md", []byte("site: A\ntimezone: UTC\nbroker: {url: mqtt://127.0.0.1}\n"+text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(s.Loads) != 2 || s.Loads[1].Vessel == nil || len(s.Tags)-s.Declared() != 2 {
+		t.Errorf("the README shows %d loads and %d tags", len(s.Loads), len(s.Tags))
+	}
+	words, _, _ = strings.Cut(words, "\n### ")
+	for _, block := range []string{"tags.*.alive", "tags.*.counts", "loads.*.stream.corrections", "loads.*.stream.corrections.stored"} {
+		for _, key := range site.Keys()[block] {
+			if !strings.Contains(text+words, "`"+key) && !strings.Contains(text+words, key+":") {
+				t.Errorf("the README says nothing of %s.%s", block, key)
+			}
+		}
+	}
+}
+
 // The reasons to refuse a message that the README lists are those that there are.
 func TestReadmeNamesTheReasons(t *testing.T) {
 	_, rest, ok := strings.Cut(readme(t), "The reasons: ")
