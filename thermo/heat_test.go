@@ -7,20 +7,11 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
-	"heatreeve/thermo/gas"
 	"heatreeve/thermo/water"
 )
 
 func TestHeatRefuses(t *testing.T) {
 	w := water.Liquid()
-	air, err := gas.DryAir(gas.Ideal)
-	if err != nil {
-		t.Fatal(err)
-	}
-	rigid := func(f thermo.Fluid, V, T1, p1, T2 float64) error {
-		_, _, err := thermo.RigidVesselHeat(f, V, T1, p1, T2)
-		return err
-	}
 	stream := func(m, T1, p1, T2, p2 float64) error {
 		_, err := thermo.StreamHeat(w, m, T1, p1, T2, p2)
 		return err
@@ -35,34 +26,12 @@ func TestHeatRefuses(t *testing.T) {
 		{stream(math.Inf(1), 300, 1e5, 310, 1e5), false, "mass of +Inf"},
 		{stream(1, 270, 1e5, 310, 1e5), true, "below 0 °C"},
 		{stream(1, 300, 1e5, 400, 1e5), true, "saturation"},
-		{rigid(w, 1, 300, 1e5, 310), false, "rigid vessel: water is a liquid"},
-		{rigid(air, -1, 300, 1e5, 310), false, "volume of -1 m³"},
-		{rigid(air, 1, 100, 1e5, 310), true, "temperature"},
-		{rigid(air, 1, 300, 8e5, 900), true, "pressure"},
 	} {
 		e := new(thermo.RangeError)
 		if tt.err == nil || !strings.Contains(tt.err.Error(), tt.want) || errors.As(tt.err, &e) != tt.ranged {
 			t.Errorf("error %v, want %q, range error %v", tt.err, tt.want, tt.ranged)
 		}
 	}
-}
-
-// Steam is not ideal: at constant volume the end pressure is found by density.
-func TestRigidVesselOfSteam(t *testing.T) {
-	s := water.Steam()
-	q, p2, err := thermo.RigidVesselHeat(s, 3, 500, 1e6, 700)
-	if err != nil {
-		t.Fatal(err)
-	}
-	a, err1 := s.At(500, 1e6)
-	b, err2 := s.At(700, p2)
-	if err := errors.Join(err1, err2); err != nil {
-		t.Fatal(err)
-	}
-	if !(math.Abs(b.Density/a.Density-1) <= 1e-12) || !(math.Abs(p2/1.4e6-1) >= 0.01) {
-		t.Errorf("ends at %g Pa with %g kg/m³, started with %g", p2, b.Density, a.Density)
-	}
-	near(t, "heat", q, 3*a.Density*(b.InternalEnergy-a.InternalEnergy), 1e-12)
 }
 
 // Splitting a stretch of temperature splits the heat: h is a function of state.

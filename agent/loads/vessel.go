@@ -95,7 +95,7 @@ func (e *Engine) vessel(load int, g int64) Figure {
 	}
 	x.Mean, x.Rate = line.Mean, line.Rate
 	d.Rate, d.Gain = line.uncertainty(tag), math.Abs(tag.Accuracy.Rel)/math.Sqrt(3)
-	return v.figure(f, &x, &d)
+	return v.figure(f, &e.equations[load].declared, &x, &d)
 }
 
 // moving says by how much the content changed over the span; it is empty where the
@@ -112,8 +112,8 @@ func (l *loadState) moving(v *Vessel, g int64) string {
 		lo, hi, float64(v.Over)/1e9, v.Still*100)
 }
 
-func (v *Vessel) figure(f Figure, x *inside, d *insideDoubt) Figure {
-	if why := v.phase(x); why != "" {
+func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
+	if why := v.phase(m, x); why != "" {
 		return f.fail(Saturation, why)
 	}
 	h, err := v.work(x)
@@ -128,7 +128,7 @@ func (v *Vessel) figure(f Figure, x *inside, d *insideDoubt) Figure {
 		return f
 	}
 	f.Duty = h.Duty
-	if err := v.spread(&f, x, d, &h); err != nil {
+	if err := v.spread(&f, m, x, d, &h); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
 	return f
@@ -139,10 +139,8 @@ const atRest = 2
 
 // phase says how near the content is to boiling, or to its dew point; empty where it is
 // not.
-func (v *Vessel) phase(x *inside) string {
-	lo, hi := v.Fluid.Span(x.Pressure)
-	e := end{"content", x.T, x.Pressure, lo, hi}
-	switch v.Fluid.Phase() {
+func (v *Vessel) phase(m *medium, x *inside) string {
+	switch e := m.end("content", x.T, x.Pressure); m.Phase() {
 	case thermo.Liquid:
 		if e.T > e.hi-v.Margin {
 			return e.above("boiling", v.Margin) + ": heat may be latent"

@@ -18,10 +18,9 @@ type insideDoubt struct {
 // which heat capacity and density are taken. Both are in the share of the content, with
 // those of its amount and of the wall: all that is about the vessel and lasts. The error is
 // that of the heat equation where an input can be moved neither way.
-func (v *Vessel) spread(f *Figure, x *inside, d *insideDoubt, h *heated) error {
-	uT, uP := d.T.lasting(0), d.Pressure.lasting(0)
-	state, err1 := v.swing(x, h, func(y *inside, by float64) { y.T += by * uT; y.Mean += by * uT })
-	pressure, err2 := v.swing(x, h, func(y *inside, by float64) { y.Pressure += by * uP })
+func (v *Vessel) spread(f *Figure, m *medium, x *inside, d *insideDoubt, h *heated) error {
+	state, err1 := v.swing(x, h, d.T.lasting(0), func(y inside, by float64) inside { y.T += by; y.Mean += by; return y })
+	pressure, err2 := v.swing(x, h, d.Pressure.lasting(0), func(y inside, by float64) inside { y.Pressure += by; return y })
 	if err := errors.Join(err1, err2); err != nil {
 		return err
 	}
@@ -32,7 +31,6 @@ func (v *Vessel) spread(f *Figure, x *inside, d *insideDoubt, h *heated) error {
 	about := [...]float64{state, amount * d.Content.lasting(0), h.ByShell * shellHalf / math.Sqrt(3), h.Duty * d.Gain}
 	f.Share[PartContent] = math.Copysign(math.Sqrt(sumOfSquares(about[:])), h.Duty)
 	f.Share[PartPressure] = pressure
-	m := mediumOf(v.Fluid)
 	u := m.property(x.Mean, x.Pressure)
 	f.Share[PartCp] = h.ByCp * u.cp
 	f.Share[PartStrength] = h.ByCp * u.cpByStrength
@@ -46,15 +44,17 @@ func (v *Vessel) spread(f *Figure, x *inside, d *insideDoubt, h *heated) error {
 	return nil
 }
 
-// swing is the contribution of what move moves by so many standard uncertainties.
-func (v *Vessel) swing(x *inside, centre *heated, move func(y *inside, by float64)) (float64, error) {
+// swing is the contribution of what move moves, where it is off by u.
+func (v *Vessel) swing(x *inside, centre *heated, u float64, move func(y inside, by float64) inside) (float64, error) {
+	if u == 0 {
+		return 0, nil
+	}
 	at := func(by float64) (float64, error) {
-		y := *x
-		move(&y, by)
+		y := move(*x, by)
 		h, err := v.work(&y)
 		return h.Duty, err
 	}
-	up, errUp := at(1)
-	down, errDown := at(-1)
+	up, errUp := at(u)
+	down, errDown := at(-u)
 	return contribution(centre.Duty, up, down, errUp, errDown)
 }

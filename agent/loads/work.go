@@ -71,7 +71,7 @@ type equation struct {
 // equation returns that of a load's stream; of a vessel, what it needs.
 func (l *Load) equation() (equation, error) {
 	if v := l.Vessel; v != nil {
-		return equation{needs: []Source{v.Temperature, v.Pressure, v.Content}}, nil
+		return equation{declared: mediumOf(v.Fluid), needs: []Source{v.Temperature, v.Pressure, v.Content}}, nil
 	}
 	return equationOf(&l.Stream)
 }
