@@ -175,10 +175,10 @@ func minuteRow(r *rows, m *store.Minute) {
 		r.number(x)
 	}
 	for _, x := range [...]float64{m.Duty, m.DutyMin, m.DutyMax, m.DutyUncertainty, m.Flow} {
-		r.numberIf(m.Measured > 0, x)
+		r.meanIf(m.Measured > 0, x)
 	}
 	for _, x := range [...]float64{m.Inlet, m.Outlet, m.Pressure, m.Content} {
-		r.numberIf(m.Measured > 0 && x != 0, x)
+		r.meanIf(m.Measured > 0 && x != 0, x)
 	}
 	for _, x := range [...]float64{m.Bridged, m.BridgedGiven, m.BridgedTaken, m.Latent, m.Witness, m.Compared, m.Random} {
 		r.number(x)

@@ -56,7 +56,13 @@ func (r *rows) instant(ns int64, layout string) {
 }
 
 // number adds x with as many digits as lead back to it; one that is not finite is none.
-func (r *rows) number(x float64) {
+func (r *rows) number(x float64) { r.float(x, 64) }
+
+// mean adds x as number does, with the digits that lead back to its float32, which is
+// what the history keeps of a mean.
+func (r *rows) mean(x float64) { r.float(x, 32) }
+
+func (r *rows) float(x float64, bits int) {
 	if math.IsNaN(x) || math.IsInf(x, 0) {
 		r.none()
 		return
@@ -66,16 +72,16 @@ func (r *rows) number(x float64) {
 	if a := math.Abs(x); a != 0 && a < 1e-6 || a >= 1e21 {
 		form = 'e'
 	}
-	r.line = strconv.AppendFloat(r.line, x, form, -1, 64)
+	r.line = strconv.AppendFloat(r.line, x, form, -1, bits)
 }
 
-// numberIf adds x, or an empty field.
-func (r *rows) numberIf(there bool, x float64) {
-	if there {
-		r.number(x)
-	} else {
+// meanIf adds x as mean does, or an empty field.
+func (r *rows) meanIf(there bool, x float64) {
+	if !there {
 		r.none()
+		return
 	}
+	r.mean(x)
 }
 
 func (r *rows) truth(b bool) {

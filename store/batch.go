@@ -24,7 +24,8 @@ const Shares = 16
 // Minute is what a load did in the minute that begins at Start (Unix
 // nanoseconds). Times are in s and heat in J; Duty, DutyMin, DutyMax and
 // DutyUncertainty in W; Flow in kg/s; Inlet, Outlet and Content in K; Pressure in Pa,
-// absolute.
+// absolute. Of Duty and what comes after it up to Content the nearest float32 is kept,
+// which is to a part in ten million; times and heat are kept as they are.
 type Minute struct {
 	Load  uint32
 	Start int64
@@ -39,8 +40,9 @@ type Minute struct {
 	Pressure                                float64
 	Content                                 float64
 	// Systematic is what each part adds to the uncertainty of the measured heat, signed,
-	// J, and Random the variance of what does not last, J². They are kept to a part in a
-	// thousand.
+	// J, and Random the variance of what does not last, J². Systematic and the root of
+	// Random are kept to a part in a thousand; less than 15 µJ is 0, and more than 10^14 J
+	// or no number is infinite.
 	Systematic [Shares]float64
 	Random     float64
 	// Witness is the heat that another meter counted in spans that ended in this minute

@@ -382,6 +382,21 @@ func BenchmarkYear(b *testing.B) {
 		}
 		b.ReportMetric(float64(bucketBytes(b, s, bucketHours)), "B/year-of-10")
 	})
+	b.Run("year-by-day", func(b *testing.B) {
+		for b.Loop() {
+			days := map[int64]*Hour{}
+			for _, h := range drain(b, s.Hours(3, end-365*day, end)) {
+				if days[h.Start/day] == nil {
+					days[h.Start/day] = &Hour{}
+				}
+				days[h.Start/day].Add(h)
+			}
+			if len(days) != 365 {
+				b.Fatalf("%d days", len(days))
+			}
+		}
+		b.ReportMetric(float64(b.Elapsed().Microseconds())/1e3/float64(b.N), "ms")
+	})
 	b.Run("readings", func(b *testing.B) {
 		for b.Loop() {
 			if n := len(drain(b, s.Readings(3, end-30*day, end-29*day))); n != 8640 {

@@ -2,36 +2,60 @@ package store
 
 import (
 	"encoding/binary"
-	"fmt"
-	"maps"
 	"math"
-	"slices"
-	"sort"
-
-	bolt "go.etcd.io/bbolt"
+	"math/bits"
 )
 
 const (
-	// minuteFloats is how many floats a minute record holds.
-	minuteFloats = 12
-
 	// loadsAKey is how many loads share a key: those whose numbers are alike but
 	// for the remainder by it. With many more, values become so large that bbolt,
 	// which keeps two keys and more in each page, leaves pages half empty.
 	loadsAKey = 8
+
+	// How many floats a minute has of each kind.
+	minuteSums  = 4
+	minuteMeans = 8
+	minuteRare  = 7
+
+	// What the first byte of a record holds beside the remainder of the load's number.
+	shapeShort  = 1 << 3 // a minute of this layout, not of the first
+	shapeRare   = 1 << 4 // floats follow that are 0 in most records
+	shapeParts  = 1 << 5 // the parts of the uncertainty follow
+	shapeUnused = 1<<6 | 1<<7
 )
 
-// floats lists the fields in the order in which they are stored.
-func (m *Minute) floats() [minuteFloats]*float64 {
-	return [minuteFloats]*float64{
-		&m.Measured, &m.Missing, &m.Given, &m.Taken,
-		&m.Duty, &m.DutyMin, &m.DutyMax, &m.DutyUncertainty,
-		&m.Flow, &m.Inlet, &m.Outlet, &m.Pressure,
-	}
+// sums lists the fields that are told in full.
+func (m *Minute) sums() [minuteSums]told {
+	return [...]told{{float: &m.Measured}, {float: &m.Missing}, {float: &m.Given}, {float: &m.Taken}}
 }
 
-// minuteLike tells of which floats of a minute are alike.
-var minuteLike = forerunners{-1, -1, -1, -1, -1, 4, 4, -1, -1, -1, 9, -1}
+// means lists the fields of which a float32 is told, all of them after Duty, which
+// resembles duty.
+func (m *Minute) means(duty *float64) [minuteMeans]told {
+	return [...]told{{&m.Duty, duty, true}, {&m.DutyMin, &m.Duty, true}, {&m.DutyMax, &m.Duty, true}, {&m.DutyUncertainty, nil, true},
+		{&m.Flow, nil, true}, {&m.Inlet, nil, true}, {&m.Outlet, &m.Inlet, true}, {&m.Pressure, nil, true}}
+}
+
+// rare lists the fields that are 0 in most minutes.
+func (m *Minute) rare() [minuteRare]told {
+	return [...]told{{float: &m.Bridged}, {float: &m.BridgedGiven}, {float: &m.BridgedTaken}, {float: &m.Latent},
+		{float: &m.Witness}, {float: &m.Compared}, {&m.Content, nil, true}}
+}
+
+func (m *Minute) shares() shares { return shares{&m.Systematic, &m.Random} }
+
+// kept returns what of m is kept.
+func (m Minute) kept() Minute {
+	means, rare := m.means(nil), m.rare()
+	keep(means[:])
+	keep(rare[:])
+	for i, x := range m.Systematic {
+		m.Systematic[i] = roundPart(x)
+	}
+	root := roundPart(math.Sqrt(m.Random))
+	m.Random = root * root
+	return m
+}
 
 // minuteKey is the key of a load's minute, and of its hour likewise.
 func minuteKey(start int64, load uint32) []byte {
@@ -45,10 +69,33 @@ func timeKey(t int64) []byte { return binary.BigEndian.AppendUint64(nil, uint64(
 func appendMinutes(b []byte, key []byte, all []Minute) []byte {
 	begin := len(b)
 	for _, m := range all {
-		fields := m.floats()
-		b = appendFloats(append(b, byte(m.Load%loadsAKey)), fields[:], minuteLike)
+		b = appendMinute(b, m.kept())
 	}
 	return binary.LittleEndian.AppendUint32(b, checksum(key, b[begin:]))
+}
+
+func appendMinute(b []byte, m Minute) []byte {
+	shape := len(b)
+	b = append(b, byte(m.Load%loadsAKey)|shapeShort)
+	sums, rare := m.sums(), m.rare()
+	b = appendFloats(b, sums[:])
+	foretold := foretoldDuty(m.Given, m.Taken, m.Measured)
+	means := m.means(&foretold)
+	b = appendFloats(b, means[:])
+	if !allZero(rare[:]) {
+		b[shape] |= shapeRare
+		b = appendFloats(b, rare[:])
+	}
+	m.Random = math.Sqrt(m.Random)
+	if which := m.shares().present(); which != 0 {
+		b[shape] |= shapeParts
+		b = binary.AppendUvarint(b, which)
+		for _, f := range m.shares().of(which) {
+			code, _ := partCode(*f.float)
+			b = binary.LittleEndian.AppendUint16(b, code)
+		}
+	}
+	return b
 }
 
 func anyLoad(uint32) bool { return true }
@@ -59,53 +106,79 @@ func parseMinutes(all []Minute, key, value []byte, want func(load uint32) bool) 
 	if len(key) != 12 || n < 0 || binary.LittleEndian.Uint32(value[n:]) != checksum(key, value[:n]) {
 		return all, errRecord
 	}
-	start := int64(binary.BigEndian.Uint64(key) ^ 1<<63)
 	block := binary.BigEndian.Uint32(key[8:])
+	if block > math.MaxUint32/loadsAKey {
+		return all, errRecord
+	}
 	for p := (parser{rest: value[:n]}); len(p.rest) > 0; {
-		rest := p.take(1)[0]
-		load := block*loadsAKey + uint32(rest)
-		counts, body := p.floats(minuteFloats)
-		if p.bad || rest >= loadsAKey || block > math.MaxUint32/loadsAKey {
-			return all, errRecord
+		all = append(all, Minute{Start: keyTime(key), Load: block * loadsAKey})
+		m := &all[len(all)-1]
+		p.minute(m, want)
+		if p.bad || !want(m.Load) {
+			all = all[:len(all)-1]
 		}
-		if want(load) {
-			m := Minute{Load: load, Start: start}
-			if fields := m.floats(); !parseFloats(counts, body, fields[:], minuteLike) {
-				return all, errRecord
-			}
-			all = append(all, m)
+		if p.bad {
+			return all, errRecord
 		}
 	}
 	return all, nil
 }
 
-// putMinutes replaces the minutes of the same load and start.
-func putMinutes(tx *bolt.Tx, changed []Minute) error {
-	bucket := tx.Bucket(bucketMinutes)
-	bucket.FillPercent = appendFill
-	byKey := map[string][]Minute{}
-	for _, m := range changed {
-		key := minuteKey(m.Start, m.Load)
-		all, ok := byKey[string(key)]
-		if !ok {
-			if old := bucket.Get(key); old != nil {
-				var err error
-				if all, err = parseMinutes(nil, key, old, anyLoad); err != nil {
-					return fmt.Errorf("%w: minute with key % x: %w", ErrDamaged, key, err)
-				}
-			}
-		}
-		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= m.Load })
-		if i == len(all) || all[i].Load != m.Load {
-			all = slices.Insert(all, i, m)
-		}
-		all[i] = m
-		byKey[string(key)] = all
+// minute takes a minute off the front, and reads it if its load is wanted. m has the
+// number of the first load of its key.
+func (p *parser) minute(m *Minute, want func(load uint32) bool) {
+	shape := p.take(1)[0]
+	m.Load += uint32(shape % loadsAKey)
+	if shape&shapeShort == 0 {
+		p.firstMinute(m, shape)
+		return
 	}
-	for _, key := range slices.Sorted(maps.Keys(byKey)) {
-		if err := bucket.Put([]byte(key), appendMinutes(nil, []byte(key), byKey[key])); err != nil {
-			return err
-		}
+	sums, means := p.floats(minuteSums), p.floats(minuteMeans)
+	var rare coded
+	if shape&shapeRare != 0 {
+		rare = p.floats(minuteRare)
 	}
-	return nil
+	if shape&shapeParts != 0 {
+		p.parts(m)
+	}
+	if p.bad = p.bad || shape&shapeUnused != 0; p.bad || !want(m.Load) {
+		return
+	}
+	sumFields := m.sums()
+	sums.read(sumFields[:])
+	foretold := foretoldDuty(m.Given, m.Taken, m.Measured)
+	meanFields := m.means(&foretold)
+	means.read(meanFields[:])
+	if shape&shapeRare != 0 {
+		rareFields := m.rare()
+		rare.read(rareFields[:])
+	}
+}
+
+func (p *parser) parts(m *Minute) {
+	which := p.which()
+	codes := p.take(2 * uint64(bits.OnesCount64(which)))
+	if p.bad {
+		return
+	}
+	for i, f := range m.shares().of(which) {
+		*f.float = partValue(binary.LittleEndian.Uint16(codes[2*i:]))
+	}
+	m.Random *= m.Random
+}
+
+// firstMinute takes the rest of a minute of the first layout off the front.
+func (p *parser) firstMinute(m *Minute, shape byte) {
+	floats := p.floats(minuteSums + minuteMeans)
+	if p.bad = p.bad || shape >= loadsAKey; p.bad {
+		return
+	}
+	var all [minuteSums + minuteMeans]told
+	sums, means := m.sums(), m.means(nil)
+	copy(all[:], sums[:])
+	for i, f := range means {
+		f.single = false
+		all[minuteSums+i] = f
+	}
+	floats.read(all[:])
 }

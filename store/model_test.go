@@ -23,7 +23,7 @@ type model struct {
 func (m *model) commit(b Batch) {
 	m.beats = append(m.beats, b.Beats...)
 	for _, x := range b.Minutes {
-		m.minutes[[2]int64{int64(x.Load), x.Start}] = x
+		m.minutes[[2]int64{int64(x.Load), x.Start}] = x.kept()
 	}
 	for _, r := range b.Registers {
 		m.registers[r.Load] = r

@@ -9,11 +9,16 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// registerBytes is what each load takes in the value that holds all registers.
-const registerBytes = 36
+// registerFloats is how many floats a register holds, firstRegisterFloats how many of
+// them the first layout knew.
+const (
+	registerFloats      = 7
+	firstRegisterFloats = 4
+)
 
-func (r *Register) floats() [4]*float64 {
-	return [4]*float64{&r.Given, &r.Taken, &r.Measured, &r.Missing}
+// floats lists the fields in the order in which they are stored.
+func (r *Register) floats() [registerFloats]*float64 {
+	return [...]*float64{&r.Given, &r.Taken, &r.Measured, &r.Missing, &r.Bridged, &r.BridgedGiven, &r.BridgedTaken}
 }
 
 // appendRegisters writes all registers as one value, so that none can be missing
@@ -29,6 +34,12 @@ func appendRegisters(b []byte, all []Register) []byte {
 }
 
 func parseRegisters(value []byte) ([]Register, error) {
+	return parseRegistersOf(value, registerFloats)
+}
+
+// parseRegistersOf reads registers of the first few floats.
+func parseRegistersOf(value []byte, floats int) ([]Register, error) {
+	registerBytes := 4 + 8*floats
 	n := len(value) - 4
 	if n < 0 || n%registerBytes != 0 ||
 		binary.LittleEndian.Uint32(value[n:]) != checksum(keyRegisters, value[:n]) {
@@ -38,7 +49,8 @@ func parseRegisters(value []byte) ([]Register, error) {
 	for i := range all {
 		b := value[i*registerBytes:]
 		all[i].Load = binary.LittleEndian.Uint32(b)
-		for j, f := range all[i].floats() {
+		fields := all[i].floats()
+		for j, f := range fields[:floats] {
 			*f = math.Float64frombits(binary.LittleEndian.Uint64(b[4+8*j:]))
 		}
 	}

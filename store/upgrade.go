@@ -8,8 +8,8 @@ import (
 )
 
 // upgrade brings a file of the layout before to the present one. It adds what is
-// new and takes nothing away; the hours of its minutes are built by the commits
-// that follow, and told from the minutes until then.
+// new and takes nothing away; minutes stay as they are, and their hours are built by the
+// commits that follow, and told from the minutes until then.
 func (s *Store) upgrade() error {
 	version, err := s.version()
 	if err != nil || version == Version {
@@ -54,5 +54,16 @@ func upgradeTo(tx *bolt.Tx) error {
 	if err := putHourMark(tx, unbuilt); err != nil {
 		return err
 	}
+	if err := upgradeRegisters(tx.Bucket(bucketRegisters)); err != nil {
+		return err
+	}
 	return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version))
+}
+
+func upgradeRegisters(b *bolt.Bucket) error {
+	all, err := parseRegistersOf(b.Get(keyRegisters), firstRegisterFloats)
+	if err != nil {
+		return fmt.Errorf("%w: registers: %w%s", ErrDamaged, err, advice)
+	}
+	return b.Put(keyRegisters, appendRegisters(nil, all))
 }

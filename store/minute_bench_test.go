@@ -1,0 +1,93 @@
+package store
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+)
+
+// measured makes a minute from 60 figures of a water circuit whose flow and temperatures
+// wander, with the parts of its uncertainty: flow, both thermometers, what the pair has
+// in common, heat capacity, and density.
+func measured(rng *rand.Rand, load uint32, start int64) Minute {
+	m := Minute{Load: load, Start: start, Measured: 60, DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
+	flow, inlet, outlet := 8+rng.NormFloat64(), 353+2*rng.NormFloat64(), 333+rng.NormFloat64()
+	for range 60 {
+		flow += 0.02 * rng.NormFloat64()
+		inlet += 0.02 * rng.NormFloat64()
+		outlet += 0.02 * rng.NormFloat64()
+		duty := flow * 4190 * (inlet - outlet)
+		shares := [...]float64{0: 0.005 * duty, 1: flow * 4190 * 0.2, 2: -flow * 4190 * 0.2, 8: flow * 4190 * 0.05, 9: 0.001 * duty, 10: 0.0003 * duty}
+		random := 0.002 * duty
+		variance := random * random
+		for i, x := range shares {
+			m.Systematic[i] += x
+			variance += x * x
+		}
+		m.Given += duty
+		m.Duty += duty / 60
+		m.DutyMin, m.DutyMax = min(m.DutyMin, duty), max(m.DutyMax, duty)
+		m.DutyUncertainty += math.Sqrt(variance) / 60
+		m.Random += random * random * 10
+		m.Flow += flow / 60
+		m.Inlet += inlet / 60
+		m.Outlet += outlet / 60
+		m.Pressure += (5.1e5 + 100*rng.NormFloat64()) / 60
+	}
+	return m
+}
+
+// BenchmarkMinute tells what a day of minutes and the hours of 10 loads take: B/minute and
+// B/hour are the records alone, B/page what the pages of the minutes take of each.
+// B/first-layout is what a record of the first layout takes, which tells no parts.
+func BenchmarkMinute(b *testing.B) {
+	for _, tt := range []struct {
+		what string
+		trim func(m *Minute)
+	}{
+		{"heat-alone", func(m *Minute) { m.Systematic, m.Random = [Shares]float64{}, 0 }},
+		{"with-parts", func(m *Minute) {}},
+		{"with-all", func(m *Minute) {
+			m.Measured, m.Bridged, m.BridgedGiven, m.Latent = 50, 10, m.Given/5.1, 20
+			m.Witness, m.Compared, m.Content = m.Given/1.01, m.Given/1.02, 340.1+m.Inlet/1e4
+		}},
+	} {
+		b.Run(tt.what, func(b *testing.B) {
+			for b.Loop() {
+				benchmarkMinutes(b, tt.trim)
+			}
+		})
+	}
+}
+
+func benchmarkMinutes(b *testing.B, trim func(*Minute)) {
+	s := newStore(b, Options{})
+	rng := rand.New(rand.NewPCG(9, 10))
+	first, now, hours := 0, 0, 0
+	const start, minutes, loads = 20_000 * day, 1440, 10
+	var sums [loads]hourSum
+	for minute := range int64(minutes) {
+		var batch Batch
+		for load := range uint32(loads) {
+			m := measured(rng, load, start+minute*60*second)
+			trim(&m)
+			first += len(appendFirst(nil, m))
+			now += len(appendMinute(nil, m.kept()))
+			if minute < 60 {
+				sums[load].add(&m)
+			}
+			batch.Minutes = append(batch.Minutes, m)
+		}
+		commit(b, s, batch)
+	}
+	for i := range sums {
+		hours += len(appendHour(nil, sums[i].hour()))
+	}
+	b.ReportMetric(float64(first)/minutes/loads, "B/first-layout")
+	b.ReportMetric(float64(now)/minutes/loads, "B/minute")
+	b.ReportMetric(float64(bucketBytes(b, s, bucketMinutes))/minutes/loads, "B/page")
+	b.ReportMetric(float64(hours)/loads, "B/hour")
+	if n := len(drain(b, s.Minutes(3, start, start+day))); n != minutes {
+		b.Fatalf("%d minutes", n)
+	}
+}

@@ -1,0 +1,41 @@
+package store
+
+import (
+	"fmt"
+	"maps"
+	"slices"
+	"sort"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// putMinutes replaces the minutes of the same load and start.
+func putMinutes(tx *bolt.Tx, changed []Minute) error {
+	bucket := tx.Bucket(bucketMinutes)
+	bucket.FillPercent = appendFill
+	byKey := map[string][]Minute{}
+	for _, m := range changed {
+		key := minuteKey(m.Start, m.Load)
+		all, ok := byKey[string(key)]
+		if !ok {
+			if old := bucket.Get(key); old != nil {
+				var err error
+				if all, err = parseMinutes(nil, key, old, anyLoad); err != nil {
+					return fmt.Errorf("%w: minute with key % x: %w", ErrDamaged, key, err)
+				}
+			}
+		}
+		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= m.Load })
+		if i == len(all) || all[i].Load != m.Load {
+			all = slices.Insert(all, i, m)
+		}
+		all[i] = m
+		byKey[string(key)] = all
+	}
+	for _, key := range slices.Sorted(maps.Keys(byKey)) {
+		if err := bucket.Put([]byte(key), appendMinutes(nil, []byte(key), byKey[key])); err != nil {
+			return err
+		}
+	}
+	return nil
+}
