@@ -69,7 +69,8 @@ type Tag struct {
 	Accuracy Accuracy
 	// Resolution is the step of the tag's numbers, and Deadband how far the quantity
 	// may move before a source that reports by exception tells of it; SI, 0 where
-	// unknown or none.
+	// unknown or none. What they leave open lasts for as long as a number stands, so it is
+	// a systematic part of the uncertainty.
 	Resolution, Deadband float64
 	// OnChange says that the source reports by exception: a reading holds, whatever its
 	// age, while the source is alive. Alive is then the index of the tag that tells so:
