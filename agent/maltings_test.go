@@ -120,7 +120,7 @@ func (m *maltings) says() []message {
 func (m *maltings) changes() []message {
 	var all []message
 	if m.elapsed%10 == 0 && m.elapsed <= 1800 {
-		all = append(all, message{"cold/beat", "tick"})
+		all = append(all, message{"cold/beat", fmt.Sprintf(`{"ts":%d}`, m.now()/1e6)})
 	}
 	state := func(word string) message {
 		return message{"buffer/state", fmt.Sprintf(`{"state":"%s","ts":%d}`, word, m.now()/1e9)}

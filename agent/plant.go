@@ -95,8 +95,10 @@ func signalsOf(s *site.Site) []ingest.Tag {
 	return tags
 }
 
+// hasStamps tells whether a tag that the file declares is stamped at its source. A sign of
+// life alone does not move event time.
 func hasStamps(s *site.Site) bool {
-	for _, t := range s.Tags {
+	for _, t := range s.Tags[:s.Declared()] {
 		if t.Time != "" {
 			return true
 		}

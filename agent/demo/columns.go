@@ -60,8 +60,10 @@ const (
 )
 
 // flowing tells whether the temperatures and the flow of the figure mean
-// anything.
-func flowing(l *view.Load) bool { return l.Figure.Measured() && !l.Figure.Idle }
+// anything; a vessel has none.
+func flowing(l *view.Load) bool {
+	return l.Figure.Measured() && !l.Figure.Idle && l.Figure.Content == 0
+}
 
 func dutyCell(l *view.Load) string {
 	f := &l.Figure

@@ -84,7 +84,24 @@ func notes(s *site.Site) []string {
 	if env := s.Broker.PasswordEnv; env != "" && os.Getenv(env) == "" {
 		all = append(all, fmt.Sprintf("broker.password_env: %s is not set here; the agent needs it where it runs", env))
 	}
-	return append(all, idleTags(s)...)
+	return append(append(all, idleTags(s)...), unstamped(s)...)
+}
+
+// unstamped are the tags that report on change whose time nobody knows once a message has
+// waited at the broker.
+func unstamped(s *site.Site) []string {
+	var all []string
+	for _, t := range s.Tags {
+		if t.OnChange && t.Time == "" {
+			all = append(all, fmt.Sprintf("tags.%s: reports on change without a time of its own; what the broker has kept of it is refused, so after a start nothing is known until it changes", t.Name))
+		}
+	}
+	for i, t := range s.Tags {
+		if l := t.Liveness; l != nil && !l.Kept && t.Time == "" {
+			all = append(all, fmt.Sprintf("%s: has no time of its own; after an outage of the broker or the agent %s taken to have been dead meanwhile", t.Name, told(s, i)))
+		}
+	}
+	return all
 }
 
 // idleTags are the tags that no load reads.

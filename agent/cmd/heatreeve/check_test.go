@@ -1,0 +1,70 @@
+package main
+
+import (
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+)
+
+// check tells vessels, witnesses and signs of life apart from streams and tags.
+func TestCheckTellsWhatALoadIs(t *testing.T) {
+	status, out, errs := invoke("check", "../../../configs/ostrel-maltings.yaml")
+	if status != exitGood || errs != "" {
+		t.Fatalf("status %d, %s", status, errs)
+	}
+	flat := strings.Join(strings.Fields(out), " ")
+	for _, want := range []string{
+		`good: "Ostrel Maltings", tags: 21, loads: 8 brew house: water, IAPWS`,
+		"regions 1 to 3; compared with wash/heat fermenters: glycol,",
+		"mash kettle: vessel of water, IAPWS",
+		"malt kiln: malt, invented for this example",
+		"ostrel/cold/beat: tells whether the sources of cold/in, cold/out are alive",
+		"ostrel/buffer/state: tells whether the source of buffer/pressure is alive",
+	} {
+		if !strings.Contains(flat, want) {
+			t.Errorf("does not say %q:\n%s", want, out)
+		}
+	}
+	if strings.Contains(out, "note:") {
+		t.Errorf("has something to note:\n%s", out)
+	}
+}
+
+// What no stamp tells is lost while a message waits at the broker; check says so. A word
+// that holds until the next one needs none.
+func TestCheckNotesWhatHasNoTime(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "plant.yaml")
+	if err := os.WriteFile(path, []byte(`
+site: X
+timezone: UTC
+broker: {url: mqtt://127.0.0.1}
+tags:
+  T1: {topic: a, unit: °C, accuracy: IEC 60751 A, reports: on change, alive: {topic: beat, within: 30 s}}
+  T2: {topic: b, unit: °C, value: /v, time: /t, accuracy: IEC 60751 A, reports: on change, alive: {topic: state, online: up, offline: down}}
+  ET: {topic: c, unit: MWh, accuracy: 2 % of reading, counts: {}}
+loads:
+  bath:
+    vessel: {fluid: water, temperature: T1, pressure: 1 bar, content: 3 m3, takes: heat}
+    witness: ET
+`), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	status, out, errs := invoke("check", path)
+	if status != exitGood {
+		t.Fatalf("status %d, %s", status, errs)
+	}
+	flat := strings.Join(strings.Fields(out), " ")
+	for _, want := range []string{
+		"note: tags.T2: no load reads it",
+		"note: tags.T1: reports on change without a time of its own",
+		"note: beat: has no time of its own; after an outage of the broker or the agent the source of T1 is taken to have been dead",
+	} {
+		if !strings.Contains(flat, want) {
+			t.Errorf("does not say %q:\n%s", want, out)
+		}
+	}
+	if n := strings.Count(out, "note:"); n != 3 {
+		t.Errorf("%d notes, want 3:\n%s", n, out)
+	}
+}
