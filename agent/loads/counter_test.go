@@ -260,6 +260,26 @@ func TestCounterThatReportsByException(t *testing.T) {
 	}
 }
 
+// The same where nothing else is heard, however event time comes: by 250 s five times 50
+// s of silence have told that nothing passed, and what the count at 280 s tells is missing
+// for want of temperatures.
+func TestSilentCounterAmongSilentTags(t *testing.T) {
+	for _, step := range []float64{1, 13, 1000} {
+		cfg := countingPlant()
+		cfg.Tags[flow].OnChange, cfg.Tags[flow].Alive = true, 3
+		cfg.Tags[flow].MaxAge = 50 * second
+		cfg.Tags = append(cfg.Tags, Tag{Name: "ALIVE", MaxAge: 10 * minute})
+		e := engine(t, cfg)
+		e.Advance(Beat{append(counts(0, 0), Reading{3, through(0), 1}), through(0)}, nil)
+		for s := step; s < 280; s += step {
+			e.Advance(Beat{nil, through(s)}, nil)
+		}
+		e.Advance(Beat{counts(280, 5), through(280)}, nil)
+		e.Advance(Beat{nil, through(281)}, nil)
+		accounted(t, e, 250, 0, 30, 1)
+	}
+}
+
 func TestCountedLoadFromASavedState(t *testing.T) {
 	cfg := countingPlant()
 	e := engine(t, cfg)
