@@ -113,7 +113,8 @@ func (l *loadState) moving(v *Vessel, g int64) string {
 }
 
 func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
-	if why := v.phase(m, x); why != "" {
+	why, remark := v.phase(m, x)
+	if why != "" {
 		return f.fail(Saturation, why)
 	}
 	h, err := v.work(x)
@@ -121,7 +122,7 @@ func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
 		return f.fail(OutOfRange, err.Error())
 	}
 	f.Content, f.Mass, f.Rate, f.Pressure, f.Density = x.T, h.Mass, x.Rate, x.Pressure, h.Density
-	f.Random = h.Capacity * d.Rate
+	f.Random, f.Remark = h.Capacity*d.Rate, remark
 	f.Variance = f.Random * f.Random * float64(v.Over) / 1e9
 	if math.Abs(h.Duty) <= max(v.IdleBelow, atRest*f.Random) {
 		f.Idle, f.Uncertainty = true, f.Random
@@ -137,18 +138,17 @@ func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
 // atRest is within how many standard uncertainties of zero a rate is none.
 const atRest = 2
 
-// phase says how near the content is to boiling, or to its dew point; empty where it is
-// not.
-func (v *Vessel) phase(m *medium, x *inside) string {
-	switch e := m.end("content", x.T, x.Pressure); m.Phase() {
-	case thermo.Liquid:
-		if e.T > e.hi-v.Margin {
-			return e.above("boiling", v.Margin) + ": heat may be latent"
-		}
-	case thermo.Gas:
-		if e.T < e.lo+v.Margin {
-			return e.below(dewPoint, v.Margin) + ": heat may be latent"
-		}
+// phase tells how near the content is to a change of phase, as that of a stream does:
+// refused says why there is no duty, and the remark stands beside one.
+func (v *Vessel) phase(m *medium, x *inside) (refused string, r Remark) {
+	e, frost := m.end("content", x.T, x.Pressure), min(v.Margin, nearFreezing)
+	switch liquid, gas := m.Phase() == thermo.Liquid, m.Phase() == thermo.Gas; {
+	case liquid && e.T > e.hi-v.Margin:
+		return e.above("boiling", v.Margin) + ": heat may be latent", r
+	case gas && e.T < e.lo+v.Margin:
+		return e.below(dewPoint, v.Margin) + ": heat may be latent", r
+	case liquid && e.T < e.lo+frost:
+		r.Note = "near freezing: " + e.below("freezing", frost) + ", and ice is not in the duty"
 	}
-	return ""
+	return "", r
 }

@@ -343,3 +343,65 @@ func TestVesselByVolume(t *testing.T) {
 		t.Errorf("duty %g W, share of the density %g W; want both above zero", f.Duty, f.Share[PartDensity])
 	}
 }
+
+// Ice forms in a tank before its mean is at freezing: the duty stands, with a remark.
+func TestVesselNearFreezing(t *testing.T) {
+	v := tank()
+	v.Gives, v.Margin = true, 5
+	e := engine(t, closed(v))
+	follows(e, 0, 0, 900, 10, func(s float64) float64 { return 276 - s/1000 })
+	f := e.Snapshot().Loads[0].Figure
+	const want = "near freezing: content at 1.96 °C is within 3 K of freezing at 0.00 °C (500.0 kPa absolute), and ice is not in the duty"
+	if f.Note != want || f.Latent {
+		t.Errorf("note %q, latent %v; want %q", f.Note, f.Latent, want)
+	}
+	near(t, "duty", f.Duty, 2000, 1e-6)
+}
+
+// What a tag read before its source was gone is no part of the slope afterwards.
+func TestVesselAfterALapse(t *testing.T) {
+	cfg := closed(tank())
+	cfg.Tags[0].OnChange, cfg.Tags[0].Alive = true, 1
+	e := engine(t, cfg)
+	for s := 0.0; s <= 1800; s += 10 {
+		if s > 900 && s < 1100 {
+			continue
+		}
+		T := 320 + s/1000
+		if s >= 1100 {
+			T += 30 // another tank, for all we know
+		}
+		e.Advance(Beat{[]Reading{{0, through(s), T}, {1, through(s), 1}}, through(s)}, nil)
+		f := e.Snapshot().Loads[0].Figure
+		switch {
+		case s >= 310 && s <= 900 || s >= 1410:
+			near(t, "duty", f.Duty, 2000, 1e-6)
+		case s > 1110 && s < 1390 && f.Fault != Fitting:
+			t.Fatalf("%g s: fault %v (%s), want fitting", s, f.Fault, f.Reason)
+		}
+	}
+}
+
+// Readings of beats that were booked elsewhere are a part of the slope; those of another tag
+// or another span are not.
+func TestTrendsOverARestart(t *testing.T) {
+	e := engine(t, closed(tank()))
+	follows(e, 0, 0, 400, 10, func(s float64) float64 { return 320 + s/1000 })
+	for s := 410.0; s <= 1200; s += 10 {
+		e.Adopt(Beat{[]Reading{{0, through(s), 320 + s/1000}}, through(s)})
+	}
+	e.Advance(Beat{nil, through(1201)}, nil)
+	near(t, "duty", e.Snapshot().Loads[0].Figure.Duty, 2000, 1e-6)
+	other, longer := closed(tank()), closed(tank())
+	other.Loads[0].Vessel.Temperature = FromTag(1)
+	longer.Loads[0].Vessel.Over *= 2
+	for _, tt := range []struct {
+		cfg    Config
+		points int
+	}{{closed(tank()), 60}, {other, 0}, {longer, 0}} {
+		next := restarted(t, e, tt.cfg)
+		if got := next.loads[0].Trends[ofTemperature].fit(through(1201), false); got.Points != tt.points {
+			t.Errorf("%d points after a restart, want %d", got.Points, tt.points)
+		}
+	}
+}
