@@ -41,9 +41,17 @@ func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*acc
 	return a, nil
 }
 
+// mostGap is the longest time that is booked as missing at one time. More is no outage
+// but a clock that was set by years: of that the last firstReach is booked, as where
+// accounts begin.
+const mostGap = 366 * 24 * time.Hour
+
 // advance puts one beat through and returns the minutes that closed; they are
 // good until the next call.
 func (a *accounts) advance(b loads.Beat) []loads.Minute {
+	if from := a.engine.Through(); from > 0 && b.Through-from > int64(mostGap) {
+		a.engine.Adopt(loads.Beat{Through: b.Through - int64(firstReach)})
+	}
 	a.closed = a.engine.Advance(b, a.closed[:0])
 	for _, m := range a.closed {
 		lasting, random := m.Doubt()

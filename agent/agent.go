@@ -40,8 +40,8 @@ type Options struct {
 	Version string
 	Log     *slog.Logger
 	// Now is the clock that stamps arrivals and moves silent event time; nil is
-	// the system's. A demo may run a faster one. Waits and disk intervals keep
-	// to the system's clock.
+	// the system's, which is not followed at once where it is set. A demo may run a
+	// faster one. Waits and disk intervals keep to the system's clock.
 	Now func() time.Time
 	// Ready is told the address that is listened on once the agent serves; may
 	// be nil.
@@ -54,6 +54,7 @@ type Options struct {
 type Agent struct {
 	site    *site.Site
 	o       Options
+	clock   *stepless // nil where Options give one
 	session *ingest.Session
 	latest  atomic.Pointer[view.Snapshot]
 	health  health
@@ -63,14 +64,16 @@ type Agent struct {
 
 // New returns an agent for s that is not started yet.
 func New(s *site.Site, o Options) (*Agent, error) {
+	var clock *stepless
 	if o.Now == nil {
-		o.Now = time.Now
+		clock = systemClock(o.Log)
+		o.Now = clock.Now
 	}
 	session, err := newSession(s, o)
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, session: session, commits: metrics.CommitSeconds()}
+	a := &Agent{site: s, o: o, clock: clock, session: session, commits: metrics.CommitSeconds()}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil

@@ -33,7 +33,8 @@ type rhythm struct {
 	unacked   []ingest.Received // taken and not yet on disk
 	readings  []ingest.Reading
 	stats     ingest.Stats
-	committed time.Time // system clock
+	shifted   time.Duration // of the clock, as the pace knows
+	committed time.Time     // system clock
 	trimmed   time.Time
 	window    window
 	told      bool   // that the broker waits
@@ -175,6 +176,11 @@ func (a *Agent) take(r *rhythm) {
 // with a backlog and no more than the lateness of it ever waits.
 func (a *Agent) put(r *rhythm) {
 	now := a.o.Now()
+	if a.clock != nil {
+		_, shifted := a.clock.state()
+		r.pace.shift(shifted - r.shifted)
+		r.shifted = shifted
+	}
 	r.received = a.session.Take(r.received[:0])
 	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
 	for rest := r.received; ; {
@@ -228,9 +234,10 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 		a.o.Log.Info("the history is written again")
 	}
 	r.hold = hold{}
-	r.rate.note(len(r.unacked), system)
-	r.window.committed(a.session.Waiting())
+	waiting := a.session.Waiting()
 	a.session.Ack(r.unacked)
+	r.rate.note(max(0, waiting-a.session.Waiting()), system)
+	r.window.committed(waiting)
 	r.unacked = r.unacked[:0]
 	return true
 }

@@ -4,8 +4,9 @@ import "time"
 
 const (
 	// brokerQueue is how many messages a broker that has stopped sending is trusted to
-	// keep; mosquitto, unless told otherwise, keeps 1,000 and drops the rest.
-	brokerQueue = 800
+	// keep; mosquitto, unless told otherwise, keeps 1,000 and drops the rest, and a
+	// burst must find room as well.
+	brokerQueue = 600
 	// longestHold is how long readings are left with a broker that has stopped sending,
 	// however seldom they come: event time stands still meanwhile, up to longestWait.
 	longestHold = 4 * time.Minute
@@ -19,7 +20,7 @@ const (
 // is thought to have room, waiting loses nothing whatever happens. Before it is full,
 // the agent goes on in memory: it acknowledges what is not on disk.
 type hold struct {
-	since    time.Time // when the broker was first seen to have stopped; zero: it has not
+	since    time.Time // when the broker stopped; zero: it has not
 	inMemory bool      // messages were acknowledged that are not on disk
 }
 
@@ -33,16 +34,22 @@ func (h *hold) over(now time.Time, stuck bool, perSecond float64) bool {
 		h.since = time.Time{}
 		return false
 	case h.since.IsZero():
-		h.since = now
+		h.since = now.Add(-stuckLooks * lookEvery) // when the last message came
 	}
 	held := now.Sub(h.since)
 	return held >= longestHold || held.Seconds()*perSecond >= brokerQueue
 }
 
-// rateSpan is how far back a rate remembers, roughly.
-const rateSpan = time.Minute
+const (
+	// rateSpan is how far back a rate remembers a busier time, roughly.
+	rateSpan = time.Minute
+	// rateLeast is the least time that a rate is taken over: what a broker had kept back
+	// comes in bursts.
+	rateLeast = 5 * time.Second
+)
 
-// rate is how many readings come in a second that the broker wants acknowledged.
+// rate is how many messages a second are acknowledged: it rises at once, and falls
+// slowly, so that a queue is rather thought to fill too soon than too late.
 type rate struct {
 	perSecond float64
 	count     int
@@ -55,13 +62,10 @@ func (r *rate) note(n int, now time.Time) {
 		r.since = now
 	}
 	span := now.Sub(r.since)
-	if span < time.Second {
+	if span < rateLeast {
 		return
 	}
-	weight := min(1, span.Seconds()/rateSpan.Seconds())
-	if r.perSecond == 0 {
-		weight = 1
-	}
-	r.perSecond += weight * (float64(r.count)/span.Seconds() - r.perSecond)
+	present, faded := float64(r.count)/span.Seconds(), max(0, 1-span.Seconds()/rateSpan.Seconds())
+	r.perSecond = max(present, present+faded*(r.perSecond-present))
 	r.count, r.since = 0, now
 }

@@ -16,20 +16,21 @@ func TestNothingIsAcknowledgedWhileTheBrokerSends(t *testing.T) {
 	}
 }
 
-// Once it has stopped, its queue decides: of a thousand messages that it is sure to
-// keep, two hundred are left when the agent goes on in memory.
+// Once it has stopped, its queue decides: of a thousand messages that it is thought to
+// keep, room for four hundred is left when the agent goes on in memory.
 func TestHoldLastsAsLongAsTheBrokersQueue(t *testing.T) {
 	for _, tt := range []struct {
 		perSecond float64
 		want      int64 // s
 	}{
-		{4000, 1}, {400, 2}, {100, 8}, {10, 80}, {4, 200}, {1, 240}, {0, 240},
+		{4000, 0}, {400, 1}, {100, 5}, {10, 59}, {4, 149}, {1, 239}, {0, 239},
 	} {
 		var h hold
-		s := int64(1)
-		for ; s < 1000 && !h.over(wall(s*sec), true, tt.perSecond); s++ {
+		got := int64(0) // s after it was seen
+		for got < 1000 && !h.over(wall((1000+got)*sec), true, tt.perSecond) {
+			got++
 		}
-		if got := s - 1; got != tt.want {
+		if got != tt.want {
 			t.Errorf("%g a second: goes on after %d s, want %d", tt.perSecond, got, tt.want)
 		}
 	}
@@ -66,8 +67,13 @@ func TestRateFollows(t *testing.T) {
 	if r.perSecond < 99 || r.perSecond > 101 {
 		t.Errorf("%g a second, want 100", r.perSecond)
 	}
-	run(400, int64(5*rateSpan/time.Second))
-	if r.perSecond < 390 || r.perSecond > 401 {
-		t.Errorf("%g a second, want 400 in the end", r.perSecond)
+	if run(400, 5); r.perSecond < 399 || r.perSecond > 401 {
+		t.Errorf("%g a second, want 400 at once", r.perSecond)
+	}
+	if run(100, 10); r.perSecond < 300 {
+		t.Errorf("%g a second ten seconds later, want most of the 400 still", r.perSecond)
+	}
+	if run(100, int64(5*rateSpan/time.Second)); r.perSecond > 105 {
+		t.Errorf("%g a second in the end, want 100", r.perSecond)
 	}
 }

@@ -31,6 +31,7 @@ const (
 type ledger struct {
 	accounts    *accounts
 	store       *store.Store
+	write       func(store.Batch) error // Commit of store
 	log         *slog.Logger
 	tagIDs      []uint32
 	loadIDs     []uint32
@@ -54,7 +55,7 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 		return nil, err
 	}
 	a.site, a.zone, a.units = s.Name, s.Zone.String(), unitsOf(s)
-	l := &ledger{accounts: a, store: db, log: log, saved: now}
+	l := &ledger{accounts: a, store: db, write: db.Commit, log: log, saved: now}
 	if l.tagIDs, err = db.IDs("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
 		return nil, err
 	}
@@ -289,7 +290,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 		}
 		l.batch.Checkpoint = state
 	}
-	if err := l.store.Commit(l.batch); err != nil {
+	if err := l.write(l.batch); err != nil {
 		l.fail(err)
 		return err
 	}

@@ -219,7 +219,7 @@ func TestLedgerOnAFullDisk(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer db.Close()
-	l.store = db
+	l.store, l.write = db, db.Commit
 	if _, err := db.IDs("load", []string{"main"}); err != nil {
 		t.Fatal(err)
 	}

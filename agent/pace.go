@@ -90,6 +90,17 @@ func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
 	return p.through
 }
 
+// shift notes that the clock was set by d: what it showed before is counted anew, as
+// if it had always been so.
+func (p *pace) shift(d time.Duration) {
+	for _, at := range []*time.Time{&p.heard, &p.led, &p.opened, &p.lag.begun} {
+		if !at.IsZero() {
+			*at = at.Add(d)
+		}
+	}
+	p.lag.shift(int64(d))
+}
+
 // furthestBehind returns the oldest of the tags' newest stamps, of tags that have led.
 func (p *pace) furthestBehind() int64 {
 	oldest := int64(math.MaxInt64)
@@ -123,6 +134,15 @@ func (l *lag) note(d int64, now time.Time) {
 		l.begun, l.this = now, math.MaxInt64
 	}
 	l.this = min(l.this, max(0, d))
+}
+
+// shift notes that the clock was set by d ns: stamps lag by so much more.
+func (l *lag) shift(d int64) {
+	for _, x := range []*int64{&l.this, &l.before} {
+		if *x != math.MaxInt64 {
+			*x = max(0, *x+d)
+		}
+	}
 }
 
 // least returns the least lag; 0 before any reading.

@@ -26,6 +26,9 @@ func (a *Agent) publish(r *rhythm) {
 		},
 		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
+	if a.clock != nil {
+		v.ClockSteps, _ = a.clock.state()
+	}
 	for i := range s.Loads {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
 	}

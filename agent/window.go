@@ -62,9 +62,9 @@ func (w *window) committed(n int) {
 // us until it is seen not to.
 func (w *window) connected() { w.eager, w.misses, w.limit = true, 0, 0 }
 
-// failed notes that a commit could not be made: the broker's silence means nothing
+// failed notes that a commit could not be made: none is tried for the broker's sake
 // until one is.
-func (w *window) failed() { w.eager, w.early, w.acked, w.silent = false, false, 0, 0 }
+func (w *window) failed() { w.eager, w.early, w.acked = false, false, 0 }
 
 // look takes in how many messages wait now, and reports whether to commit for the
 // broker's sake.
@@ -105,12 +105,8 @@ func (w *window) reached(waiting int) bool {
 	return false
 }
 
-// most is how many messages are thought to be all that the broker sends.
-func (w *window) most() int { return max(leastWindow, w.limit) }
-
-// stuck reports whether the broker is thought to have stopped: as many messages wait
-// as it sends, or have waited for a while.
-func (w *window) stuck() bool { return w.waiting >= w.most() && w.silent >= stuckLooks }
+// stuck reports whether messages wait and no more have come for a while.
+func (w *window) stuck() bool { return w.waiting >= leastWindow && w.silent >= stuckLooks }
 
 // outgrown forgets a limit that the broker does not keep to.
 func (w *window) outgrown(waiting int) {

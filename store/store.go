@@ -150,14 +150,15 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 }
 
 // IsFull tells whether err came of a full disk, or of the file having reached
-// its greatest size.
+// its greatest size: that of its options, or the most that the file system or the
+// limits of the process allow.
 func IsFull(err error) bool {
 	if err == nil {
 		return false
 	}
 	// bbolt drops the cause where growing the file fails, so the text is asked too.
 	return errors.Is(err, berrors.ErrMaxSizeReached) || errors.Is(err, syscall.ENOSPC) ||
-		errors.Is(err, syscall.EDQUOT) || strings.Contains(err.Error(), syscall.ENOSPC.Error())
+		errors.Is(err, syscall.EDQUOT) || errors.Is(err, syscall.EFBIG) || strings.Contains(err.Error(), syscall.ENOSPC.Error())
 }
 
 // update runs f in a read-write transaction. s.mu is held.

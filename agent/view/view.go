@@ -14,14 +14,16 @@ import (
 
 // Snapshot is the agent at one beat. Instants are Unix nanoseconds.
 type Snapshot struct {
-	Site    string
-	At      int64 // event time: every interval that ends by then is accounted for
-	Lag     int64 // how far the stamps have lately lagged behind the clock at least, ns
-	Slack   int64 // how long a reading may be on its way into a figure in good order, ns
-	Loads   []Load
-	Tags    []Tag
-	Broker  Broker
-	History History
+	Site  string
+	At    int64 // event time: every interval that ends by then is accounted for
+	Lag   int64 // how far the stamps have lately lagged behind the clock at least, ns
+	Slack int64 // how long a reading may be on its way into a figure in good order, ns
+	Loads []Load
+	Tags  []Tag
+	// ClockSteps counts how often this machine's clock was set while the agent ran.
+	ClockSteps uint64
+	Broker     Broker
+	History    History
 }
 
 // Load is one load.
