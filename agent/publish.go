@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
 	"heatreeve/agent/view"
 	"heatreeve/ingest"
 )
@@ -33,7 +34,7 @@ func (a *Agent) publish(r *rhythm) {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
 	}
 	for i, t := range s.Tags {
-		v.Tags[i] = tagView(a.site.Tags[i].Name, t, stats.Tags[i])
+		v.Tags[i] = tagView(&a.site.Tags[i], t, stats.Tags[i])
 	}
 	a.tellLate(r, v)
 	a.latest.Store(v)
@@ -77,8 +78,8 @@ var reasons = names(ingest.Reasons(), ingest.Reason.String)
 // crowded is one more: good readings that the engine had no room for.
 const crowded = "crowded"
 
-func tagView(name string, t loads.TagState, s ingest.TagStats) view.Tag {
-	v := view.Tag{Name: name, Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
+func tagView(tag *site.Tag, t loads.TagState, s ingest.TagStats) view.Tag {
+	v := view.Tag{Name: tag.Name, MaxAge: int64(tag.Holds()), Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
 	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
 	for i, reason := range reasons {
 		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})

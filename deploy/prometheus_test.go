@@ -22,6 +22,7 @@ var metrics = map[string][]string{
 	"heatreeve_load_expected_duty_watts":      {"load"},
 	"heatreeve_load_time_seconds_total":       {"load", "kind"},
 	"heatreeve_load_verdict":                  {"load", "verdict"},
+	"heatreeve_tag_max_age_seconds":           {"tag"},
 	"heatreeve_tag_reading_timestamp_seconds": {"tag"},
 	"heatreeve_tag_readings_total":            {"tag"},
 	"heatreeve_tag_refused_total":             {"tag", "reason"},

@@ -39,6 +39,7 @@ var (
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
 
 	reading  = desc("tag_reading_timestamp_seconds", "Unix time of the newest accepted reading.", "tag")
+	maxAge   = desc("tag_max_age_seconds", "How long a reading holds; left out where it does as long as its source is alive.", "tag")
 	readings = desc("tag_readings_total", "Readings accepted since the agent started.", "tag")
 	refused  = desc("tag_refused_total", "Messages refused since the agent started, by tag and reason; reasons that a tag has not met are left out.", "tag", "reason")
 	refusals = desc("refused_total", "Messages refused since the agent started, by reason, over all tags.", "reason")
@@ -168,6 +169,9 @@ func (o *sink) means(s *view.Snapshot, i int, now int64) {
 func (o *sink) tag(t *view.Tag) {
 	if t.Newest != 0 {
 		o.gauge(reading, seconds(t.Newest), t.Name)
+	}
+	if t.MaxAge > 0 {
+		o.gauge(maxAge, float64(t.MaxAge)/1e9, t.Name)
 	}
 	o.counter(readings, float64(t.Accepted), t.Name)
 	o.counter(late, float64(t.Late), t.Name)

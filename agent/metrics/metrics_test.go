@@ -30,7 +30,7 @@ func snapshot() *view.Snapshot {
 			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true}, Until: instant + 30e9},
 		},
 		Tags: []view.Tag{
-			{Name: "TT-1", Newest: instant, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}},
+			{Name: "TT-1", Newest: instant, MaxAge: 30e9, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}},
 			{Name: "TT-2", Refused: []view.Refusal{{Reason: "empty", Count: 4}, {Reason: "ahead"}}},
 		},
 		Broker:  view.Broker{Connected: true, Losses: 4, UnknownTopic: 5, Waiting: 7},
@@ -72,6 +72,9 @@ heatreeve_load_expected_duty_watts{load="hot-water"} 640000
 # HELP heatreeve_tag_reading_timestamp_seconds Unix time of the newest accepted reading.
 # TYPE heatreeve_tag_reading_timestamp_seconds gauge
 heatreeve_tag_reading_timestamp_seconds{tag="TT-1"} 1.7000000005e+09
+# HELP heatreeve_tag_max_age_seconds How long a reading holds; left out where it does as long as its source is alive.
+# TYPE heatreeve_tag_max_age_seconds gauge
+heatreeve_tag_max_age_seconds{tag="TT-1"} 30
 # HELP heatreeve_tag_refused_total Messages refused since the agent started, by tag and reason; reasons that a tag has not met are left out.
 # TYPE heatreeve_tag_refused_total counter
 heatreeve_tag_refused_total{reason="empty",tag="TT-1"} 3
@@ -83,7 +86,7 @@ heatreeve_refused_total{reason="empty"} 7
 `
 	err := testutil.GatherAndCompare(registry(snapshot(), instant+5e9), strings.NewReader(want),
 		"heatreeve_load_duty_watts", "heatreeve_load_inlet_celsius", "heatreeve_load_coverage_ratio",
-		"heatreeve_load_expected_duty_watts", "heatreeve_tag_reading_timestamp_seconds", "heatreeve_tag_refused_total", "heatreeve_refused_total")
+		"heatreeve_load_expected_duty_watts", "heatreeve_tag_reading_timestamp_seconds", "heatreeve_tag_max_age_seconds", "heatreeve_tag_refused_total", "heatreeve_refused_total")
 	if err != nil {
 		t.Error(err)
 	}

@@ -128,6 +128,11 @@ func TestLivenessTags(t *testing.T) {
 	if *inJSON.Liveness != (Liveness{"1", "0", false}) || inJSON.MaxAge != time.Hour || inJSON.Value != "/s" || inJSON.Time != "/t" || inJSON.TimeFormat != "ms" {
 		t.Errorf("in JSON = %+v, %+v", inJSON, inJSON.Liveness)
 	}
+	for name, want := range map[string]time.Duration{"T1": 0, "FQ": 10 * time.Minute, "LT": time.Minute, "plc/beat": 30 * time.Second, "plc/state": 0} {
+		if got := s.tagNamed(t, name).Holds(); got != want {
+			t.Errorf("%s holds for %v, want %v", name, got, want)
+		}
+	}
 	if s := parse(t, plant); s.Declared() != len(s.Tags) {
 		t.Errorf("%d declared of %d tags, where none reports on change", s.Declared(), len(s.Tags))
 	}

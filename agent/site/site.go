@@ -75,6 +75,15 @@ type Tag struct {
 	Liveness *Liveness
 }
 
+// Holds is how long a reading of the tag holds; 0 where it does as long as its source is
+// alive, or until there is another.
+func (t *Tag) Holds() time.Duration {
+	if t.OnChange && t.Counter == nil || t.MaxAge == untilTold {
+		return 0
+	}
+	return t.MaxAge
+}
+
 // Counter is a register that only counts up, in the SI unit of its tag: m³, kg, mol or J.
 type Counter struct {
 	Modulus float64 // where it begins again at zero; 0 when the file gives none

@@ -42,6 +42,7 @@ type Load struct {
 type Tag struct {
 	Name     string
 	Newest   int64 // stamp of the newest reading; 0 before the first
+	MaxAge   int64 // how long a reading holds, ns; 0 for as long as its source is alive
 	Accepted uint64
 	Late     uint64    // arrived after their interval was accounted for
 	Repeated uint64    // delivered more than once
