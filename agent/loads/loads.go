@@ -7,7 +7,9 @@
 //
 // Figures are computed on a grid aligned to the epoch. The figure of the
 // interval [g, g+grid) is worked from the values known at g: each tag holds its
-// last reading until its maximum age. An interval is booked when event time has
+// last reading until its maximum age, or where it reports by exception while its source
+// is alive. What a load remembers beside is how a vessel's temperature went of late, and
+// what is between a stream's thermometers. An interval is booked when event time has
 // passed its end, either as measured, with its heat, or as missing.
 //
 // The duty is of sensible heat. Of a liquid near boiling, or a gas near its dew point,
