@@ -96,10 +96,10 @@ func (l *ledger) makeRoom(now int64) bool {
 		l.log.Error("history is not trimmed", "error", err)
 		return false
 	}
-	if t.Readings+t.Minutes == 0 {
+	if t == (store.Trimmed{}) {
 		return false
 	}
-	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes)
+	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "damaged", t.Damaged)
 	return true
 }
 
@@ -327,8 +327,8 @@ func (l *ledger) trim(now int64) error {
 	if err != nil {
 		return err
 	}
-	if t.Readings+t.Minutes > 0 {
-		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "bytes", l.store.Bytes())
+	if t != (store.Trimmed{}) {
+		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "damaged", t.Damaged, "bytes", l.store.Bytes())
 	}
 	return nil
 }

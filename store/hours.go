@@ -3,7 +3,6 @@ package store
 import (
 	"bytes"
 	"encoding/binary"
-	"fmt"
 	"iter"
 	"maps"
 	"math"
@@ -29,19 +28,36 @@ func putHourMark(tx *bolt.Tx, m hourMark) error {
 	return tx.Bucket(bucketMeta).Put(keyHours, binary.LittleEndian.AppendUint32(b, checksum(keyHours, b)))
 }
 
-func readHourMark(tx *bolt.Tx) (hourMark, error) {
+// readHourMark returns ok false where the mark is damaged, and then one by which all
+// hours are built again: those before the end of the first hour that has minutes may have
+// lost some.
+func readHourMark(tx *bolt.Tx) (m hourMark, ok bool) {
 	v := tx.Bucket(bucketMeta).Get(keyHours)
-	if len(v) != 20 || binary.LittleEndian.Uint32(v[16:]) != checksum(keyHours, v[:16]) {
-		return hourMark{}, fmt.Errorf("%w: mark of the hours: %w", ErrDamaged, errRecord)
+	if len(v) == 20 && binary.LittleEndian.Uint32(v[16:]) == checksum(keyHours, v[:16]) {
+		return hourMark{int64(binary.LittleEndian.Uint64(v)), int64(binary.LittleEndian.Uint64(v[8:]))}, true
 	}
-	return hourMark{int64(binary.LittleEndian.Uint64(v)), int64(binary.LittleEndian.Uint64(v[8:]))}, nil
+	m = unbuilt
+	if k, _ := tx.Bucket(bucketMinutes).Cursor().Seek(keyFirstMinute); len(k) == 12 {
+		m.trimmed = hourAfter(hourOf(keyTime(k)))
+	}
+	return m, false
+}
+
+// hourMark is readHourMark for what writes: a damaged mark is counted, and made good.
+func (s *Store) hourMark(tx *bolt.Tx) (hourMark, error) {
+	m, ok := readHourMark(tx)
+	if ok {
+		return m, nil
+	}
+	s.torn = append(s.torn, s.damage("mark of the hours, now made again,", keyHours, errRecord))
+	return m, putHourMark(tx, m)
 }
 
 // putHours keeps the hours up to date with their minutes, of which changed have just
 // been written: an hour that is over is built, one that was built before is
 // built anew.
 func (s *Store) putHours(tx *bolt.Tx, changed []Minute) error {
-	mark, err := readHourMark(tx)
+	mark, err := s.hourMark(tx)
 	if err != nil {
 		return err
 	}
@@ -55,12 +71,28 @@ func (s *Store) putHours(tx *bolt.Tx, changed []Minute) error {
 		}
 	}
 	for _, start := range slices.Sorted(maps.Keys(late)) {
+		s.widen(tx, start, late[start])
 		w := s.newHourWalk(tx, start)
-		if err := mark.put(tx, w.hour(func(load uint32) bool { return late[start][load] }), w.torn); err != nil {
+		if err := s.putHour(tx, mark, w.hour(func(load uint32) bool { return late[start][load] }), w.torn); err != nil {
 			return err
 		}
 	}
 	return s.advanceHours(tx, mark, keysAStep)
+}
+
+// widen adds to the loads whose hour is built anew those whose hour lies under the same
+// key and cannot be read.
+func (s *Store) widen(tx *bolt.Tx, start int64, loads map[uint32]bool) {
+	for _, load := range slices.Sorted(maps.Keys(loads)) {
+		key := minuteKey(start, load)
+		if old := tx.Bucket(bucketHours).Get(key); old != nil {
+			if _, err := parseHours(nil, key, old, anyLoad); err != nil {
+				for i := range uint32(loadsAKey) {
+					loads[load/loadsAKey*loadsAKey+i] = true
+				}
+			}
+		}
+	}
 }
 
 // advanceHours builds hours that are over, from some keys or a few more.
@@ -75,7 +107,7 @@ func (s *Store) advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
 	}
 	w := s.newHourWalk(tx, mark.built)
 	for w.keys < keys && w.key != nil && w.start() < end {
-		if err := mark.put(tx, w.hour(anyLoad), w.torn); err != nil {
+		if err := s.putHour(tx, mark, w.hour(anyLoad), w.torn); err != nil {
 			return err
 		}
 	}
@@ -162,17 +194,23 @@ func wantsAny(key []byte, want func(load uint32) bool) bool {
 	return false
 }
 
-// put writes hours that have one start, sorted by load.
-func (mark hourMark) put(tx *bolt.Tx, hours []Hour, torn map[uint32]bool) error {
+// putHour writes hours that have one start, sorted by load. Those that cannot be read
+// under a key that is written make place and are counted.
+func (s *Store) putHour(tx *bolt.Tx, mark hourMark, hours []Hour, torn map[uint32]bool) error {
 	bucket := tx.Bucket(bucketHours)
 	bucket.FillPercent = appendFill
 	for len(hours) > 0 {
 		key := minuteKey(hours[0].Start, hours[0].Load)
 		n := sort.Search(len(hours), func(i int) bool { return hours[i].Load/loadsAKey > hours[0].Load/loadsAKey })
-		all, err := mark.merge(bucket.Get(key), key, hours[:n], torn[hours[0].Load/loadsAKey])
-		if err != nil {
-			return err
+		var all []Hour
+		if old := bucket.Get(key); old != nil {
+			var err error
+			if all, err = parseHours(nil, key, old, anyLoad); err != nil {
+				s.torn = append(s.torn, s.damage("hours, now replaced,", key, err))
+				all = nil
+			}
 		}
+		all = mark.merge(all, hours[:n], torn[hours[0].Load/loadsAKey])
 		if err := bucket.Put(key, appendHours(nil, key, all)); err != nil {
 			return err
 		}
@@ -181,31 +219,27 @@ func (mark hourMark) put(tx *bolt.Tx, hours []Hour, torn map[uint32]bool) error 
 	return nil
 }
 
-// merge puts fresh hours among those that old holds. One that was built when more of
-// its minutes were there, or could be read, stays.
-func (mark hourMark) merge(old, key []byte, fresh []Hour, torn bool) (all []Hour, err error) {
-	if old != nil {
-		if all, err = parseHours(nil, key, old, anyLoad); err != nil {
-			return nil, fmt.Errorf("%w: hour with key % x: %w", ErrDamaged, key, err)
-		}
-	}
+// merge puts fresh hours among all. One that was built when more of its minutes were
+// there, or could be read, stays; where it is not known which minutes are gone, so does one
+// of as many.
+func (mark hourMark) merge(all, fresh []Hour, torn bool) []Hour {
 	for _, h := range fresh {
 		i := sort.Search(len(all), func(i int) bool { return all[i].Load >= h.Load })
 		switch {
 		case i == len(all) || all[i].Load != h.Load:
 			all = slices.Insert(all, i, h)
-		case h.Start >= mark.trimmed && !torn || h.Minutes > all[i].Minutes:
+		case h.Minutes > all[i].Minutes || h.Minutes == all[i].Minutes && h.Start >= mark.trimmed && !torn:
 			all[i] = h
 		}
 	}
-	return all, nil
+	return all
 }
 
 // Hours yields the hours of a load with from <= Start < to, by Start. The hours
 // that are not over yet, and those of a file of an older layout that are not
 // built yet, are added up from the minutes there are. The store may be written to
 // meanwhile. Damaged hours are told as an error and passed over unless the caller
-// stops, and so are damaged minutes of those that are added up, which [Store.Torn] counts
+// stops, and so are damaged minutes of those that are added up, which [Store.Damaged] counts
 // once their hour is over.
 func (s *Store) Hours(load uint32, from, to int64) iter.Seq2[Hour, error] {
 	return func(yield func(Hour, error) bool) {
@@ -234,13 +268,9 @@ func (s *Store) Hours(load uint32, from, to int64) iter.Seq2[Hour, error] {
 func (s *Store) hoursFrom(found []Hour, from, to int64, load uint32) (all []Hour, faults []error, next int64) {
 	all, next = found, to
 	err := s.view(func(tx *bolt.Tx) error {
-		mark, err := readHourMark(tx)
-		switch {
-		case err != nil:
-			return fmt.Errorf("history %q: %w", s.path, err)
-		case from < mark.built:
+		if mark, _ := readHourMark(tx); from < mark.built {
 			all, faults, next = s.builtFrom(tx, all, from, min(to, mark.built), load)
-		default:
+		} else {
 			all, faults, next = s.unbuiltFrom(tx, all, from, to, load)
 		}
 		return nil

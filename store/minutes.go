@@ -1,7 +1,6 @@
 package store
 
 import (
-	"fmt"
 	"maps"
 	"slices"
 	"sort"
@@ -9,8 +8,9 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// putMinutes replaces the minutes of the same load and start.
-func putMinutes(tx *bolt.Tx, changed []Minute) error {
+// putMinutes replaces the minutes of the same load and start. Those that cannot be read
+// under a key that is written make place and are counted.
+func (s *Store) putMinutes(tx *bolt.Tx, changed []Minute) error {
 	bucket := tx.Bucket(bucketMinutes)
 	bucket.FillPercent = appendFill
 	byKey := map[string][]Minute{}
@@ -21,7 +21,8 @@ func putMinutes(tx *bolt.Tx, changed []Minute) error {
 			if old := bucket.Get(key); old != nil {
 				var err error
 				if all, err = parseMinutes(nil, key, old, anyLoad); err != nil {
-					return fmt.Errorf("%w: minute with key % x: %w", ErrDamaged, key, err)
+					s.torn = append(s.torn, s.damage("minutes, now replaced,", key, err))
+					all = nil
 				}
 			}
 		}

@@ -70,6 +70,11 @@ func (s *Store) nextChunk(tx *bolt.Tx, after *uint64, want func(span) bool) (c c
 			if at = cursor.at(); at.name == nil {
 				return c, true, err
 			}
+			if after := *after + 1; after > 1 {
+				if next, bad := parseName(at.name); bad == nil && next.first <= after {
+					continue // what it holds lies before
+				}
+			}
 			*after = binary.BigEndian.Uint64(at.name) - 1
 			return c, false, err
 		}
@@ -242,10 +247,7 @@ func (s *Store) Before(d time.Duration) iter.Seq2[Beat, error] {
 // beats are gone: groups that could not be sealed may lie before that.
 func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 	err = s.view(func(tx *bolt.Tx) error {
-		sealed, err := s.lastSealed(tx)
-		if err != nil {
-			return err
-		}
+		sealed := lastSealed(tx)
 		c := tx.Bucket(bucketJournal).Cursor()
 		for k := seekGroup(c, seq); k != nil; k, _ = c.Prev() {
 			head, err := parseName(k)
@@ -264,18 +266,16 @@ func (s *Store) groupBefore(seq uint64, from int64) (last uint64, err error) {
 	return last, err
 }
 
-// lastSealed returns the number of the last record of the newest block, 0 where there
-// is none.
-func (s *Store) lastSealed(tx *bolt.Tx) (uint64, error) {
-	k, _ := tx.Bucket(bucketSealed).Cursor().Last()
-	if k == nil {
-		return 0, nil
+// lastSealed returns the number of the last record of the newest block whose name can be
+// read, 0 where there is none.
+func lastSealed(tx *bolt.Tx) uint64 {
+	c := tx.Bucket(bucketSealed).Cursor()
+	for k, _ := c.Last(); k != nil; k, _ = c.Prev() {
+		if newest, err := parseName(k); err == nil {
+			return newest.last
+		}
 	}
-	newest, err := parseName(k)
-	if err != nil {
-		return 0, s.damage("block", k, err)
-	}
-	return newest.last, nil
+	return 0
 }
 
 // Readings yields the readings of a tag with from <= At < to, in the order in

@@ -2,6 +2,7 @@ package store
 
 import (
 	"bytes"
+	"cmp"
 	"encoding/binary"
 	"errors"
 	"math"
@@ -115,6 +116,7 @@ func (s *Store) sealStep() (cost int, err error) {
 	})
 	if err != nil || len(beats) == 0 {
 		// It stays as it is, for readers to be told.
+		s.passOver("group", c.span.name(), err)
 		z.skip(c.last + 1)
 		return 1, nil
 	}
@@ -146,6 +148,7 @@ func (s *Store) sealable() (c chunk, err error) {
 		for journal.name, _ = cursor.Seek(sequenceKey(z.next)); journal.name != nil; journal.name, _ = cursor.Next() {
 			head, err := parseName(journal.name)
 			if err != nil {
+				s.passOver("name of a group", journal.name, err)
 				z.skip(binary.BigEndian.Uint64(journal.name) + 1)
 				continue
 			}
@@ -157,6 +160,12 @@ func (s *Store) sealable() (c chunk, err error) {
 		return nil
 	})
 	return c, err
+}
+
+// passOver tells of a group that cannot be sealed.
+func (s *Store) passOver(what string, name []byte, err error) {
+	s.damaged.Add(1)
+	s.log.Warn("damaged readings of the history stay as they are", "file", s.path, "err", s.damage(what, name, cmp.Or(err, errRecord)))
 }
 
 // skip passes over a group; those before it cannot share a block with those after it.

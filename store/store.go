@@ -82,14 +82,14 @@ type Store struct {
 	piece      int // bytes that one tail bucket may hold
 	groupBytes int // size at which a group is closed
 
-	used      atomic.Int64 // bytes of the pages in use
-	tornCount atomic.Int64
+	used    atomic.Int64 // bytes of the pages in use
+	damaged atomic.Int64
 
 	mu      sync.Mutex // held while writing; guards what follows
 	open    *openGroup // nil: to be read from the file before the next record
 	newest  int64      // Through of the last beat
 	sealing sealer
-	torn    []error // minutes that the transaction at hand builds hours without
+	torn    []error // what the transaction at hand cannot read and goes on without
 	full    bool    // the last commit found no room
 	closed  bool
 }
@@ -131,7 +131,7 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 		}
 	}
 	if len(b.Minutes) > 0 {
-		if err := putMinutes(tx, b.Minutes); err != nil {
+		if err := s.putMinutes(tx, b.Minutes); err != nil {
 			return fmt.Errorf("minutes: %w", err)
 		}
 	}
@@ -170,15 +170,17 @@ func (s *Store) update(f func(*bolt.Tx) error) error {
 	err := guard(func() error { return s.db.Update(f) })
 	s.measure()
 	if err == nil && len(s.torn) > 0 {
-		s.tornCount.Add(int64(len(s.torn)))
-		s.log.Warn("minutes cannot be read and are not in their hours", "file", s.path, "keys", len(s.torn), "err", s.torn[0])
+		s.damaged.Add(int64(len(s.torn)))
+		s.log.Warn("damaged records of the history are left out", "file", s.path, "keys", len(s.torn), "err", s.torn[0])
 	}
 	return err
 }
 
-// Torn counts, since Open, the keys of minutes (up to eight loads each) that could not be
-// read when an hour was built from them. The log tells which.
-func (s *Store) Torn() int64 { return s.tornCount.Load() }
+// Damaged counts, since Open, the records that could not be read when something was to
+// be made of them: keys of minutes (up to eight loads each) that are missing in their hour or
+// were replaced, keys of hours that were replaced, groups that cannot be sealed, and what
+// Trim removed unread. The log tells which. What only a reader meets, it is told itself.
+func (s *Store) Damaged() int64 { return s.damaged.Load() }
 
 func (s *Store) view(f func(*bolt.Tx) error) error {
 	return guard(func() error { return s.db.View(f) })

@@ -58,16 +58,16 @@ func TestTornMinutes(t *testing.T) {
 	if found, told := hourOfLoad(s, 12, start); len(told) != 0 || len(found) != 1 || found[0].Minutes != 60 {
 		t.Errorf("the hour of a load beside it is %+v, with %v", found, told)
 	}
-	if s.Torn() != 0 || log.Len() != 0 {
-		t.Errorf("%d keys are torn, and the log says %q, before the hour is built", s.Torn(), &log)
+	if s.Damaged() != 0 || log.Len() != 0 {
+		t.Errorf("%d keys are torn, and the log says %q, before the hour is built", s.Damaged(), &log)
 	}
 	commit(t, s, Batch{Minutes: []Minute{wave(3, start+hourNanos)}})
 	commit(t, s, Batch{Minutes: []Minute{wave(3, start+hourNanos+60*second)}})
 	if found, _ := hourOfLoad(s, 3, start); len(found) != 1 || found[0].Minutes != 58 || found[0].Given != 180_900 {
 		t.Errorf("the hour is built as %+v", found)
 	}
-	if n := strings.Count(log.String(), "minutes cannot be read"); s.Torn() != 2 || n != 1 || !strings.Contains(log.String(), "keys=2") {
-		t.Errorf("%d keys are torn, want 2; the log says %q", s.Torn(), &log)
+	if n := strings.Count(log.String(), "damaged records of the history"); s.Damaged() != 2 || n != 1 || !strings.Contains(log.String(), "keys=2") {
+		t.Errorf("%d keys are torn, want 2; the log says %q", s.Damaged(), &log)
 	}
 }
 
@@ -94,7 +94,7 @@ func TestTornAfterBuilding(t *testing.T) {
 			t.Errorf("the hour of load %d is %+v, with %v; want 60 minutes of %v J", load, found, told, want)
 		}
 	}
-	if s.Torn() != 1 { // the minutes of load 20 were not asked for
-		t.Errorf("%d keys are torn, want 1", s.Torn())
+	if s.Damaged() != 1 { // the minutes of load 20 were not asked for
+		t.Errorf("%d keys are torn, want 1", s.Damaged())
 	}
 }

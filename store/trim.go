@@ -90,6 +90,7 @@ func (s *Store) trim(remove remover, old, bound int64, t *Trimmed) error {
 		if err != nil {
 			return err
 		}
+		s.damaged.Add(done.Damaged - t.Damaged)
 		*t = done
 	}
 	return nil
@@ -153,16 +154,14 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 	if keys, _ := s.oldest(tx.Bucket(bucketMinutes), old, excess, math.MaxInt64); len(keys) == 0 {
 		return false, nil
 	}
-	mark, err := readHourMark(tx)
+	mark, err := s.hourMark(tx)
 	if err != nil {
 		return false, err
 	}
 	if err := s.advanceHours(tx, mark, keysATrim); err != nil {
 		return false, err
 	}
-	if mark, err = readHourMark(tx); err != nil {
-		return false, err
-	}
+	mark, _ = readHourMark(tx)
 	keys, more := s.oldest(tx.Bucket(bucketMinutes), old, excess, mark.built)
 	if len(keys) == 0 {
 		return false, nil

@@ -89,7 +89,7 @@ func TestTrimByAge(t *testing.T) {
 // TestTrimByBytes fills ten weeks: the bound holds after every trim, the file is
 // not much longer, and readings go before minutes.
 func TestTrimByBytes(t *testing.T) {
-	const bound = 12 << 20
+	const bound = 9 << 20
 	path := filepath.Join(t.TempDir(), "history.db")
 	s := openStore(t, path, Options{MaxBytes: bound})
 	const from, days = 20_000 * day, 70
