@@ -7,6 +7,8 @@ import (
 	"testing"
 
 	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
+	"heatreeve/configs"
 	"heatreeve/ingest"
 )
 
@@ -46,6 +48,46 @@ func TestPlantOfTheMaltings(t *testing.T) {
 	signals := signalsOf(m.site)
 	if beat, state := signals[21].Liveness, signals[22].Liveness; beat == nil || beat.Online != "" || state == nil || *state != (ingest.Liveness{Online: "up", Offline: "down"}) {
 		t.Errorf("signs of life: %+v, %+v", beat, state)
+	}
+}
+
+// What the reader takes the engine takes as well, where they both check.
+func TestEngineTakesWhatTheReaderTakes(t *testing.T) {
+	text, err := configs.Files.ReadFile("ostrel-maltings.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, change := range []struct{ from, to string }{
+		{"", ""},
+		{"unit: m3/h, value: /v, time: /ts, accuracy: 1 % of reading, range: [0 m3/h, 8 m3/h]", "unit: kg/h, value: /v, time: /ts, accuracy: 1 % of reading"}, // a hold by mass
+		{"pressure: 0 kPag, takes: heat}", "pressure: 0 kPag, takes: heat, corrections: {hold: 2 m3, pump: 3 kW}}"},                                           // of a solid
+		{"stored: {content: 900 L, metal: 650 kg steel, over: 5 min}", "hold: 900 L, stored: {metal: 650 kg steel}"},
+		{"counts: {rolls_over_at: 100 000 m3, largest: 20 m3/h}, max_age: 10 min", "counts: {}, reports: on change, alive: {topic: x, within: 1 min}, max_age: 10 min"},
+		{"content: kettle/level, shell: 2.4 t stainless steel 304", "content: 6 m3"},
+		{"still: 0.5 %", "still: 0 %"},
+		{"content: 6 m3, rigid: true", "content: 180 kg, rigid: true"},
+		{"content: 6 m3, rigid: true", "content: 6 m3, rigid: false"},
+		{"range: [0 °C, 120 °C]}", "range: [0 °C, 120 °C], reports: on change, alive: {topic: ostrel/cold/beat, time: /ts, within: 30 s}}"},
+		{"witness: wash/heat", "design: {duty: 1 kW, allow: 5 %}"},
+		{"timing: {bridge: 15 min}", "timing: {bridge: 2 h, grid: 5 s}"},
+		{"    witness: wash/heat\n", ""},
+		{"takes: heat, idle_below: 5 kW", "gives: heat, idle_below: 0 kW"},
+	} {
+		if !strings.Contains(string(text), change.from) {
+			t.Errorf("the example has no %q", change.from)
+		}
+		changed := strings.Replace(string(text), change.from, change.to, 1)
+		if strings.HasPrefix(change.to, "design") {
+			changed = strings.Replace(changed, "\n    design: {duty: 180 kW, allow: 10 %, inlet: 85 °C, outlet: 60 °C}", "", 1)
+		}
+		s, err := site.Parse("changed.yaml", []byte(changed))
+		if err != nil {
+			t.Errorf("%q: %v", change.to, err)
+			continue
+		}
+		if _, err := loads.New(plantOf(s)); err != nil {
+			t.Errorf("the reader takes %q, and the engine says: %v", change.to, err)
+		}
 	}
 }
 

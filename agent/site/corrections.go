@@ -28,12 +28,11 @@ func (r *reader) corrections(stream object, s *Stream, d *Design) {
 	}
 }
 
-// hold reads the volume that the fluid passes in plug flow.
+// hold reads the volume that the fluid passes in plug flow; a flow by mass tells as well
+// how long that takes, by the density of what comes in.
 func (o object) hold(v value, s *Stream) {
 	s.Hold, _ = v.aboveZero(unit.Volume)
 	switch {
-	case s.FlowKind != 0 && s.FlowKind != unit.VolumeFlow:
-		v.fault("wants a volume flow, which tells how long the fluid is on its way; this one is a %v", s.FlowKind)
 	case s.Inlet.Constant():
 		v.fault("is about an inlet that changes, and this one is a constant")
 	case s.HumidityKind != 0:

@@ -54,11 +54,14 @@ func (v value) plainCapacity(s string) float64 {
 	return 0
 }
 
+// mostOfMass is how many words a mass takes: "1 000 000 short ton (US)" has six.
+const mostOfMass = 8
+
 // massOf parts "120 kg steel" into the mass and what it is of: the longest beginning that
 // is a mass, and at least a word behind it.
 func massOf(s string) (mass unit.Quantity, name string, ok bool) {
 	words := strings.Fields(s)
-	for n := len(words) - 1; n > 0; n-- {
+	for n := min(len(words)-1, mostOfMass); n > 0; n-- {
 		q, err := unit.ParseAs(strings.Join(words[:n], " "), unit.Mass)
 		if err == nil {
 			return q, strings.Join(words[n:], " "), true
