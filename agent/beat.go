@@ -60,15 +60,23 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 		}
 	}
 	a.tellFuture(r.pace.through)
-	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTicker(lookEvery)
+	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTimer(lookEvery)
 	defer ticker.Stop()
 	defer look.Stop()
 	a.beat(r, time.Now())
-	for {
+	for looking := true; ; {
+		if !looking && (r.window.wakeful() || r.books.fault != "") {
+			looking = true
+			look.Reset(lookEvery)
+		}
 		select {
 		case <-ticker.C:
+			if !looking {
+				a.look(r, time.Now())
+			}
 			a.beat(r, time.Now())
 		case <-look.C:
+			looking = false
 			a.look(r, time.Now())
 		case <-a.session.Reached():
 			a.reached(r, time.Now())

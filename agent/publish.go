@@ -80,10 +80,20 @@ const crowded = "crowded"
 
 func tagView(tag *site.Tag, t loads.TagState, s ingest.TagStats) view.Tag {
 	v := view.Tag{Name: tag.Name, MaxAge: int64(tag.Holds()), Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
-	v.Refused = make([]view.Refusal, 0, len(reasons)+1)
-	for i, reason := range reasons {
-		v.Refused = append(v.Refused, view.Refusal{Reason: reason, Count: s.Refused[i]})
+	v.Refused = noRefusals
+	if t.Crowded > 0 || s.Refused != (ingest.TagStats{}).Refused {
+		v.Refused = refusals(&s, t.Crowded)
 	}
-	v.Refused = append(v.Refused, view.Refusal{Reason: crowded, Count: t.Crowded})
 	return v
+}
+
+// noRefusals are those of the tags that have none, which are most of them at each beat.
+var noRefusals = refusals(new(ingest.TagStats), 0)
+
+func refusals(s *ingest.TagStats, crowdedOut uint64) []view.Refusal {
+	all := make([]view.Refusal, 0, len(reasons)+1)
+	for i, reason := range reasons {
+		all = append(all, view.Refusal{Reason: reason, Count: s.Refused[i]})
+	}
+	return append(all, view.Refusal{Reason: crowded, Count: crowdedOut})
 }

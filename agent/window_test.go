@@ -3,8 +3,8 @@ package agent
 import "testing"
 
 // play lets a broker with a limit of messages in flight work against the window:
-// publish(i) messages come to the broker before look i, and the agent commits each
-// every looks, or when the window says so. It returns how many messages the broker
+// publish(i) messages come to the broker before look i, every tenth of which is that of a
+// beat, and the agent commits each every looks, or when the window says so. It returns how many messages the broker
 // keeps at most, and how many commits there were.
 func play(w *window, limit, every, looks int, publish func(i int) int) (most, commits int) {
 	kept, inFlight, last := 0, 0, 0
@@ -21,13 +21,29 @@ func play(w *window, limit, every, looks int, publish func(i int) int) (most, co
 			inFlight, last = 0, i
 			commits++
 		}
-		if w.look(inFlight) || i-last >= every {
+		if (i%10 == 0 || w.wakeful()) && w.look(inFlight) || i-last >= every {
 			w.committed(inFlight)
 			inFlight, last = 0, i
 			commits++
 		}
 	}
 	return most, commits
+}
+
+// A plant that sends little is looked at with the beat, and twice after a commit.
+func TestLittleIsLookedAtSeldom(t *testing.T) {
+	var w window
+	w.connected()
+	awake := 0
+	play(&w, 10_000, 100, 6000, func(i int) int {
+		if i%10 != 0 && w.wakeful() {
+			awake++
+		}
+		return 4
+	})
+	if want := freshLooks + answerLooks*6000/100 + 6000/10; awake > want {
+		t.Errorf("%d looks between the beats of ten minutes, want at most %d", awake, want)
+	}
 }
 
 func steadily(n int) func(int) int { return func(int) int { return n } }
