@@ -125,7 +125,11 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
 	defer endSession()
 	g, ctx := errgroup.WithContext(ctx)
-	g.Go(func() error { return a.session.Run(sessionCtx) })
+	through := books.through.Load()
+	g.Go(func() error {
+		a.awaitClock(sessionCtx, through)
+		return a.session.Run(sessionCtx)
+	})
 	g.Go(func() error {
 		defer endSession()
 		return a.beats(ctx, books)

@@ -4,6 +4,7 @@ import (
 	"log/slog"
 	"path/filepath"
 	"testing"
+	"testing/synctest"
 	"time"
 
 	"heatreeve/agent/loads"
@@ -269,5 +270,38 @@ func TestYearsAreNotBooked(t *testing.T) {
 	defer shut()
 	if again := l.registers()[0]; again != got {
 		t.Errorf("registers %+v after a restart, want %+v", again, got)
+	}
+}
+
+// The start waits for a clock that is behind the history, ten minutes at most, and
+// not where it has been set.
+func TestStartWaitsForTheClock(t *testing.T) {
+	for _, tt := range []struct {
+		name        string
+		behind, set time.Duration // at the start; after how long it is set
+		want        time.Duration
+	}{
+		{"never off", 0, 0, 0},
+		{"no more than a stamp may be ahead", 30 * time.Second, time.Hour, 0},
+		{"off for a day, set after a while", 24 * time.Hour, 40 * time.Second, 40 * time.Second},
+		{"a history from the future", 24 * time.Hour, 23 * time.Hour, clockWait},
+		{"as far behind as will have passed", 2 * time.Minute, time.Hour, 90 * time.Second},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			synctest.Test(t, func(t *testing.T) {
+				start := time.Now()
+				now := func() time.Time {
+					if time.Since(start) < tt.set {
+						return time.Now().Add(-tt.behind)
+					}
+					return time.Now()
+				}
+				a := &Agent{site: parsed(t, benchSite), o: Options{Now: now, Log: slog.New(slog.DiscardHandler)}}
+				a.awaitClock(t.Context(), start.UnixNano())
+				if got := time.Since(start); got != tt.want {
+					t.Errorf("waited %v, want %v", got, tt.want)
+				}
+			})
+		})
 	}
 }
