@@ -40,7 +40,7 @@ func (l *loadState) piece(g, span int64) *minuteSum {
 
 // told takes a new count: it decides on the pieces, and on a gap once that has ended.
 func (l *loadState) told(c count) {
-	l.counts(&c)
+	l.decide(&c)
 	if l.Gap.open() {
 		l.Counted.Told = append(l.Counted.Told, c)
 	}
@@ -52,11 +52,11 @@ func (l *loadState) unheard() {
 	if l.Gap.open() {
 		l.lapse()
 	}
-	l.counts(&count{})
+	l.decide(&count{})
 }
 
-// counts books the pieces by the count that they waited for.
-func (l *loadState) counts(c *count) {
+// decide books the pieces by the count that they waited for.
+func (l *loadState) decide(c *count) {
 	pieces := l.Counted.Pieces
 	l.Counted.Pieces = nil
 	if len(pieces) == 0 {

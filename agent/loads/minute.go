@@ -119,8 +119,8 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 		s.Latent += span
 	}
 	s.Uncertainty += f.Uncertainty * dt
-	for p, share := range f.Share {
-		s.Systematic[p] += share * dt
+	for p := range s.Systematic {
+		s.Systematic[p] += f.Share[p] * dt
 	}
 	s.MassFlow += f.MassFlow * dt
 	s.Inlet += f.Inlet * dt
@@ -146,8 +146,8 @@ func (m *minuteSum) add(o *Minute, g int64, rate float64) {
 		s.DutyMin, s.DutyMax = min(s.DutyMin, o.DutyMin*rate), max(s.DutyMax, o.DutyMax*rate)
 	}
 	s.Uncertainty += o.Uncertainty * rate
-	for p, share := range o.Systematic {
-		s.Systematic[p] += share * rate
+	for p := range s.Systematic {
+		s.Systematic[p] += o.Systematic[p] * rate
 	}
 	s.Random += o.Random * rate * rate
 	s.MassFlow += o.MassFlow * rate

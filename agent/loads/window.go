@@ -9,9 +9,10 @@ const slots = 60
 type Window struct {
 	Slot     int64 // length of a part, ns
 	Now      int64 // start of the present part
+	parts    int
+	present  int // index of the present part
 	Heat     [slots]float64
 	Measured [slots]int64
-	parts    int
 }
 
 // newWindow returns a window of the given length; where the grid is coarser than
@@ -22,26 +23,39 @@ func newWindow(length, grid int64) Window {
 }
 
 // book adds heat (J) worked over span from g on; missing time is booked as
-// measured 0.
+// measured 0. It never goes back.
 func (w *Window) book(g int64, heat float64, measured int64) {
-	if w.Now == 0 {
-		w.Now = floor(g, w.Slot)
+	if g >= w.Now+w.Slot {
+		w.move(g)
 	}
+	w.Heat[w.present] += heat
+	w.Measured[w.present] += measured
+}
+
+// move makes the part that g lies in the present one, and empties those in between.
+func (w *Window) move(g int64) {
 	for steps := 0; w.Now+w.Slot <= g; steps++ {
-		if steps >= w.parts {
+		if steps >= w.parts || w.Now == 0 {
 			w.Now = floor(g, w.Slot)
-			break
+			w.present = w.index(w.Now)
+			return
 		}
 		w.Now += w.Slot
-		i := w.index(w.Now)
-		w.Heat[i], w.Measured[i] = 0, 0
+		if w.present++; w.present == w.parts {
+			w.present = 0
+		}
+		w.Heat[w.present], w.Measured[w.present] = 0, 0
 	}
-	i := w.index(g)
-	w.Heat[i] += heat
-	w.Measured[i] += measured
 }
 
 func (w *Window) index(at int64) int { return int(at / w.Slot % int64(w.parts)) }
+
+// resume takes up the window that was saved of the same length on the same grid.
+func (w *Window) resume(was Window) {
+	was.parts = w.parts
+	was.present = was.index(was.Now)
+	*w = was
+}
 
 // Mean is a rolling mean with the share of the window that was measured; time
 // before the first reading counts as not measured.
