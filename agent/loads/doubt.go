@@ -41,7 +41,7 @@ func (d *doubt) lasting(shared float64) float64 {
 }
 
 // step is how far the input is moved to see what it does: by its accuracy, or where none
-// is stated by what else may be wrong; 0 where nothing is.
+// is stated by what else may be wrong; 0 of the zero value alone.
 func (d *doubt) step() float64 {
 	if d.accuracy > 0 {
 		return d.accuracy

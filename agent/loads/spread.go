@@ -44,10 +44,10 @@ func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt,
 	var random float64
 	for part := range inputs {
 		d := &inputs[part]
-		u := d.step()
-		if u == 0 {
+		if *d == (doubt{}) {
 			continue
 		}
+		u := d.step()
 		half, err := q.swing(m, x, Part(part), u, centre)
 		if err != nil {
 			return err
@@ -77,10 +77,17 @@ func sumOfSquares(contributions []float64) float64 {
 	return sum
 }
 
-// swing is the contribution of one input that is off by u.
+// swing is the contribution of one input that is off by u. What the stream brings goes
+// with the flow.
 func (q *equation) swing(m *medium, x *State, part Part, u float64, centre *Result) (float64, error) {
-	up, errUp := q.beside(m, x, q.moved(*x, part, u), centre)
-	down, errDown := q.beside(m, x, q.moved(*x, part, -u), centre)
+	if part == PartFlow {
+		return (centre.Duty - q.correction(x)) / x.Flow * u, nil
+	}
+	above, below := *x, *x
+	q.move(&above, part, u)
+	q.move(&below, part, -u)
+	up, errUp := q.beside(m, x, &above, centre)
+	down, errDown := q.beside(m, x, &below, centre)
 	return contribution(centre.Duty, up, down, errUp, errDown)
 }
 
@@ -102,12 +109,12 @@ func contribution(centre, up, down float64, errUp, errDown error) (float64, erro
 // beside returns the duty in the state y, near the state x with the result centre. An
 // end that has not moved is not worked again; what a measured humidity amounts to
 // moves with the inlet.
-func (q *equation) beside(m *medium, x *State, y State, centre *Result) (float64, error) {
+func (q *equation) beside(m *medium, x, y *State, centre *Result) (float64, error) {
 	in, out := centre.Inlet, centre.Outlet
 	inletMoved := y.Inlet != x.Inlet || y.Pressure != x.Pressure
 	outletMoved := y.Outlet != x.Outlet || y.OutletPressure != x.OutletPressure
 	if q.humid != nil && (inletMoved || y.Humidity != x.Humidity) {
-		other, err := q.medium(&y)
+		other, err := q.medium(y)
 		if err != nil {
 			return 0, err
 		}
@@ -115,23 +122,22 @@ func (q *equation) beside(m *medium, x *State, y State, centre *Result) (float64
 	}
 	var err error
 	if inletMoved {
-		if in, err = m.inlet(&y); err != nil {
+		if in, err = m.inlet(y); err != nil {
 			return 0, err
 		}
 	}
 	if outletMoved {
-		if out, err = m.outlet(&y); err != nil {
+		if out, err = m.outlet(y); err != nil {
 			return 0, err
 		}
 	}
-	_, _, duty := q.heat(m, &y, &in, &out)
+	_, _, duty := q.heat(m, y, &in, &out)
 	return duty, nil
 }
 
-func (q *equation) moved(x State, part Part, by float64) State {
+// move moves one input of x.
+func (q *equation) move(x *State, part Part, by float64) {
 	switch part {
-	case PartFlow:
-		x.Flow += by
 	case PartInlet:
 		x.Inlet += by
 	case PartOutlet:
@@ -148,5 +154,4 @@ func (q *equation) moved(x State, part Part, by float64) State {
 	case PartPump:
 		x.Pump += by
 	}
-	return x
 }
