@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"heatreeve/thermo"
+	humid "heatreeve/thermo/air"
 	"heatreeve/thermo/aqueous"
 	"heatreeve/thermo/gas"
 	"heatreeve/thermo/table"
@@ -49,7 +50,7 @@ func (o *operating) draws(t *testing.T, draw func(*rand.Rand) float64) func(*ran
 	t.Helper()
 	s := &o.stream
 	work := o.works(t)
-	cp, density := o.leftOpen()
+	cp, density := o.leftOpen(t)
 	one := func(rng *rand.Rand, d *doubt, shared float64) float64 {
 		return d.accuracy*math.Sqrt(1-shared)*draw(rng) + math.Sqrt(d.coarse)*rectangular(rng) + math.Sqrt(d.scatter)*normal(rng)
 	}
@@ -58,6 +59,7 @@ func (o *operating) draws(t *testing.T, draw func(*rand.Rand) float64) func(*ran
 		x.Flow += one(rng, &o.inputs[PartFlow], 0)
 		x.Inlet += one(rng, &o.inputs[PartInlet], s.Pair) + common*o.inputs[PartInlet].accuracy
 		x.Outlet += one(rng, &o.inputs[PartOutlet], s.Pair) + common*o.inputs[PartOutlet].accuracy
+		x.Humidity += one(rng, &o.inputs[PartHumidity], 0)
 		pressure := one(rng, &o.inputs[PartPressure], 0)
 		x.Pressure += pressure
 		x.OutletPressure += pressure
@@ -89,7 +91,11 @@ func (o *operating) works(t *testing.T) func(z float64, x *State) float64 {
 	}
 	return func(z float64, x *State) float64 {
 		q := &equations[n+int(math.Round(max(-1, min(z/4.5, 1))*float64(n)))]
-		r, err := q.work(&q.declared, x)
+		m, err := q.medium(x)
+		if err != nil {
+			t.Fatal(err)
+		}
+		r, err := q.work(&m, x)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -99,10 +105,17 @@ func (o *operating) works(t *testing.T) func(z float64, x *State) float64 {
 
 // leftOpen returns the relative standard uncertainties of the fluid's figures without
 // that of the strength, whose own are drawn.
-func (o *operating) leftOpen() (cp, density float64) {
+func (o *operating) leftOpen(t *testing.T) (cp, density float64) {
 	f := o.stream.Fluid
 	if o.fluid != nil {
 		f = o.fluid(0)
+	}
+	if h, ok := f.(thermo.Humid); ok {
+		wet, err := h.Carrying(thermo.Moisture{Kind: o.stream.HumidityKind, Value: o.x.Humidity}, o.x.Inlet, o.x.Pressure)
+		if err != nil {
+			t.Fatal(err)
+		}
+		f = wet
 	}
 	cpIn, densityIn := f.Uncertainty(o.x.Inlet, o.x.Pressure)
 	cpOut, densityOut := f.Uncertainty(o.x.Outlet, o.x.OutletPressure)
@@ -182,6 +195,10 @@ func operatingPoints(t *testing.T) []operating {
 	})
 	add(circuit("hot oil", oil, VolumeFlow, 4e-3, 240, 180, 3e5), func(o *operating) {
 		o.inputs[PartInlet], o.inputs[PartOutlet] = doubt{accuracy: 2.5 / math.Sqrt(3)}, doubt{accuracy: 2.5 / math.Sqrt(3)}
+	})
+	add(circuit("humid air by volume", humid.Live(), VolumeFlow, 0.8, 15, 32, 1.01e5), func(o *operating) {
+		o.stream.Gives, o.stream.HumidityKind, o.x.Humidity = false, thermo.RelativeHumidity, 0.6
+		o.inputs[PartFlow].accuracy, o.inputs[PartPressure].accuracy, o.inputs[PartHumidity].accuracy = 0.01, 300, 0.1
 	})
 	add(circuit("air by volume", air, VolumeFlow, 0.8, 180, 60, 1.02e5), func(o *operating) {
 		o.inputs[PartFlow].accuracy, o.inputs[PartPressure].accuracy = 0.04, 1e3
