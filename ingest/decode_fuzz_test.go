@@ -12,7 +12,8 @@ import (
 )
 
 // FuzzDecode claims: what is accepted is finite, in range, stamped within
-// bounds, and is what encoding/json and strconv read from the same bytes.
+// bounds, and is what encoding/json and strconv read from the same bytes. Whatever the
+// payload, it is a sign of life.
 func FuzzDecode(f *testing.F) {
 	r := rand.New(rand.NewPCG(3, 4))
 	for _, kind := range badKinds {
@@ -27,14 +28,18 @@ func FuzzDecode(f *testing.F) {
 	f.Add([]byte(`{"v":1,"t":1774745940.25}`))
 	number := bare()
 	number.Topic = celsius().Topic
-	d, err := NewDecoder([]Tag{celsius(), number}, 0)
+	beat, state := alive(Liveness{}), alive(Liveness{Online: "up", Offline: "down"})
+	beat.Topic, state.Topic, state.Value = celsius().Topic, celsius().Topic, "/s"
+	f.Add([]byte(`{"v":1,"s":"up"}`))
+	f.Add([]byte(`{"s":"\u0064own"}`))
+	d, err := NewDecoder([]Tag{celsius(), number, beat, state}, 0)
 	if err != nil {
 		f.Fatal(err)
 	}
 	f.Fuzz(func(t *testing.T, payload []byte) {
 		out, known := d.Decode(celsius().Topic, payload, arrival, false, nil)
-		if !known || len(out) != 2 {
-			t.Fatalf("%d outcomes, want 2", len(out))
+		if !known || len(out) != 4 {
+			t.Fatalf("%d outcomes, want 4", len(out))
 		}
 		for _, o := range out {
 			if o.Refusal != nil && (o.Refusal.Reason >= reasons || o.Refusal.Error() == "") {
@@ -47,6 +52,12 @@ func FuzzDecode(f *testing.F) {
 		if out[1].Refusal == nil {
 			checkBare(t, payload, out[1].Reading)
 		}
+		if out[2].Refusal != nil || out[2].Value != 1 || out[2].At != arrival {
+			t.Errorf("payload %q is no sign of life: %+v, %v", payload, out[2].Reading, out[2].Refusal)
+		}
+		if out[3].Refusal == nil {
+			checkWord(t, payload, out[3].Reading)
+		}
 	})
 }
 
@@ -54,6 +65,18 @@ func checkBare(t *testing.T, payload []byte, r Reading) {
 	x, err := strconv.ParseFloat(strings.TrimSpace(string(payload)), 64)
 	if err != nil || r.Value != x*(1./3600) || !finite(r.Value) || r.At != arrival || r.Stamped {
 		t.Errorf("payload %q gave %+v; strconv reads %v, %v", payload, r, x, err)
+	}
+}
+
+func checkWord(t *testing.T, payload []byte, r Reading) {
+	var members map[string]json.RawMessage
+	var word string
+	err := json.Unmarshal(payload, &members)
+	if err == nil {
+		err = json.Unmarshal(members["s"], &word)
+	}
+	if want, ok := map[string]float64{"up": 1, "down": 0}[word]; err != nil || !ok || r.Value != want || r.At != arrival {
+		t.Errorf("payload %q gave %+v; encoding/json reads %q, %v", payload, r, word, err)
 	}
 }
 
