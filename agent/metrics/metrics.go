@@ -44,6 +44,7 @@ var (
 	refused  = desc("tag_refused_total", "Messages refused since the agent started, by tag and reason; reasons that a tag has not met are left out.", "tag", "reason")
 	refusals = desc("refused_total", "Messages refused since the agent started, by reason, over all tags.", "reason")
 	late     = desc("tag_late_readings_total", "Readings that came after their time was accounted for: kept, but in no figure.", "tag")
+	unclear  = desc("tag_unclear_counts_total", "Counts of a counter after which it is not known what passed: it fell (reset), or rose by more than can be (implausible).", "tag", "kind")
 	repeated = desc("tag_repeated_readings_total", "Readings delivered more than once and counted once.", "tag")
 
 	eventTime = desc("event_timestamp_seconds", "Unix time up to which everything is accounted for.")
@@ -176,6 +177,10 @@ func (o *sink) tag(t *view.Tag) {
 	o.counter(readings, float64(t.Accepted), t.Name)
 	o.counter(late, float64(t.Late), t.Name)
 	o.counter(repeated, float64(t.Repeated), t.Name)
+	if t.Counter {
+		o.counter(unclear, float64(t.Resets), t.Name, "reset")
+		o.counter(unclear, float64(t.Leaps), t.Name, "implausible")
+	}
 	for _, r := range t.Refused {
 		if r.Count > 0 {
 			o.counter(refused, float64(r.Count), t.Name, r.Reason)

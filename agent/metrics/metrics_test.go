@@ -130,6 +130,21 @@ heatreeve_load_bridged_heat_joules_total{direction="taken",load="spare"} 0
 	}
 }
 
+// A counter, and it alone, tells after how many counts it was not known what had passed.
+func TestUnclearCounts(t *testing.T) {
+	s := snapshot()
+	s.Tags[1].Counter, s.Tags[1].Resets, s.Tags[1].Leaps = true, 2, 3
+	want := `
+# HELP heatreeve_tag_unclear_counts_total Counts of a counter after which it is not known what passed: it fell (reset), or rose by more than can be (implausible).
+# TYPE heatreeve_tag_unclear_counts_total counter
+heatreeve_tag_unclear_counts_total{kind="implausible",tag="TT-2"} 3
+heatreeve_tag_unclear_counts_total{kind="reset",tag="TT-2"} 2
+`
+	if err := testutil.GatherAndCompare(registry(s, instant), strings.NewReader(want), "heatreeve_tag_unclear_counts_total"); err != nil {
+		t.Error(err)
+	}
+}
+
 // A vessel has a content, and neither flow nor ends; what is random of an uncertainty has
 // a series of its own.
 func TestVessel(t *testing.T) {

@@ -47,6 +47,9 @@ type Tag struct {
 	Late     uint64    // arrived after their interval was accounted for
 	Repeated uint64    // delivered more than once
 	Refused  []Refusal // one entry a reason, all reasons, in a fixed order
+	Counter  bool      // a register that only rises
+	Resets   uint64    // falls of a counter that no roll-over explains
+	Leaps    uint64    // rises of a counter by more than can have passed
 }
 
 // Refusal counts the messages of a tag that were refused for one reason.
