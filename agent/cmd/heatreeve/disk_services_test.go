@@ -91,6 +91,7 @@ func sameRegisters(t *testing.T, got, want *agentUnderTest) {
 // broker sends, says so, acknowledges none of them, and writes all once it can; killed
 // meanwhile, it has all of them again from the broker.
 func TestDiskThatTakesNothing(t *testing.T) {
+	t.Parallel() // it waits more than it works
 	for _, how := range []string{"room returns", "killed meanwhile"} {
 		t.Run(how, func(t *testing.T) {
 			b := startBroker(t)
@@ -142,6 +143,7 @@ func TestDiskThatTakesNothing(t *testing.T) {
 // readings stay with it as long as its queue may be taken to have room; then the agent
 // goes on in memory. Nothing is lost, though twice as much comes as the broker could keep, and none of it is acknowledged before it must be.
 func TestDiskThatTakesNothingForLong(t *testing.T) {
+	t.Parallel() // it waits more than it works
 	b := startBrokerWith(t, "max_inflight_messages 20\nmax_queued_messages 1000\n")
 	hit, calm := onTwo(t, b)
 	base := time.Now().Add(-2 * time.Hour).Truncate(time.Minute).UnixMilli()

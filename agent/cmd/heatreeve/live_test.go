@@ -99,55 +99,6 @@ func TestDutyAgainstIAPWS95(t *testing.T) {
 	within(t, "inlet", a.value(t, `heatreeve_load_inlet_celsius{load="circuit"}`), 85, 1e-9)
 }
 
-// Killed again and again while readings stream in, the agent ends with the very
-// registers of one that was left alone on the same stream.
-func TestKillLosesNothingAndInventsNothing(t *testing.T) {
-	b := startBroker(t)
-	calm := startAgent(t, circuitSite(t, b, "calm"))
-	hit := startAgent(t, circuitSite(t, b, "hit"))
-	calm.subscribed(t, b, "bench/all", "TT-1")
-	hit.subscribed(t, b, "bench/all", "TT-1")
-
-	pub := b.lines(t, "bench/all")
-	base := time.Now().Add(-time.Hour).Truncate(time.Minute).UnixMilli()
-	const kills, span = 8, 150 // seconds of event time between kills
-	s := int64(0)
-	send := func(until int64) {
-		pace := time.NewTicker(2 * time.Millisecond)
-		defer pace.Stop()
-		for ; s < until; s++ {
-			<-pace.C
-			pub.send(t, `{"ti":%.2f,"to":%.2f,"q":%.3f,"p":3.2,"ts":%d}`, 80+float64(s%37)/3, 55+float64(s%11)/7, 20+float64(s%53)/9, base+s*1000)
-		}
-	}
-	for k := range int64(kills) {
-		send(k*span + span/2 + 13*k%40)
-		hit.end(t, syscall.SIGKILL)
-		send((k + 1) * span)
-		hit.start(t)
-	}
-	send(kills*span + 60)
-	pub.close(t)
-
-	end := float64(s - 1 - 5 - 1) // newest stamp, less the lateness, less the interval under way
-	calm.reaches(t, measured, end)
-	hit.reaches(t, measured, end)
-	want, err := calm.series()
-	if err != nil {
-		t.Fatal(err)
-	}
-	got, err := hit.series()
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, series := range []string{given, taken, measured, missing} {
-		if got[series] != want[series] {
-			t.Errorf("%s = %s after %d kills, want %s", series, got[series], kills, want[series])
-		}
-	}
-	t.Logf("after %d kills: %s J given, %s s measured, %s s missing, as without", kills, got[given], got[measured], got[missing])
-}
-
 // The broker goes away and comes back: the agent finds it again, the gap is
 // missing time, and no heat is booked in it.
 func TestBrokerGoneForAMinute(t *testing.T) {
