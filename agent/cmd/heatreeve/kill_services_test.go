@@ -165,7 +165,8 @@ func (v *victim) live(t *testing.T) {
 	if v.graceful && v.rng.IntN(3) == 0 {
 		how = syscall.SIGTERM
 	}
-	cmd := exec.Command(path, "run", "--site", v.site, "--data", v.data, "--listen", v.address)
+	args := []string{"run", "--site", v.site, "--data", v.data, "--listen", v.address}
+	cmd := exec.Command(path, args...)
 	var out bytes.Buffer
 	cmd.Stdout, cmd.Stderr = &out, &out
 	if err := cmd.Start(); err != nil {
