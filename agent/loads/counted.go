@@ -58,7 +58,7 @@ func (l *loadState) unheard() {
 // decide books the pieces by the count that they waited for.
 func (l *loadState) decide(c *count) {
 	pieces := l.Counted.Pieces
-	l.Counted.Pieces = nil
+	l.Counted.Pieces = pieces[:0]
 	if len(pieces) == 0 {
 		return
 	}

@@ -10,7 +10,10 @@
 // last reading until its maximum age, or where it reports by exception while its source
 // is alive. What a load remembers beside is how a vessel's temperature went of late, and
 // what is between a stream's thermometers. An interval is booked when event time has
-// passed its end, either as measured, with its heat, or as missing.
+// passed its end, either as measured, with its heat, or as missing. Some time is decided
+// on later: a short gap, which a straight line may fill once data come back, and what a
+// counter has not told yet. Registers and minutes know it when it is decided, in the
+// order of time; figures and rolling means are live.
 //
 // The duty is of sensible heat. Of a liquid near boiling, or a gas near its dew point,
 // there is none, since its heat may be latent. Of a wet gas there is the sensible part
