@@ -185,8 +185,8 @@ func TestEnergyAtOtherRates(t *testing.T) {
 		grid int64
 		next [3]func(*rand.Rand) float64
 	}{
-		{"each at its own", 2 * second, [3]func(*rand.Rand) float64{every(1.7), every(17), every(6)}},
-		{"irregular", 3 * second, [3]func(*rand.Rand) float64{every(2.5), uneven(2, 40), uneven(0.2, 15)}},
+		{"each at its own", 4 * second, [3]func(*rand.Rand) float64{every(1.7), every(17), every(6)}},
+		{"irregular", 5 * second, [3]func(*rand.Rand) float64{every(2.5), uneven(2, 40), uneven(0.2, 15)}},
 		{"coarse grid", 10 * second, [3]func(*rand.Rand) float64{every(3), every(3.3), every(20)}},
 	} {
 		t.Run(tt.name, func(t *testing.T) {

@@ -211,7 +211,7 @@ func operatingPoints(t *testing.T) []operating {
 // the 95 % interval, y ± 1.96·u, agree within the tolerance of u with two digits, widened
 // by three standard errors of the draws.
 func TestDutyByDraws(t *testing.T) {
-	const n = 80_000
+	const n = 60_000
 	for i, o := range operatingPoints(t) {
 		f := o.figure(t)
 		s := drawn(n, uint64(i), o.draws(t, normal))
@@ -232,7 +232,7 @@ func TestDutyByDraws(t *testing.T) {
 // to two bounds: y ± 2·u has at least 95 % of the draws, and the interval that has 95 % is no
 // narrower than that of one rectangle alone, 0.95·√3·u to each side.
 func TestDutyByDrawsWithinLimitsOfError(t *testing.T) {
-	const n = 40_000
+	const n = 30_000
 	for i, o := range operatingPoints(t) {
 		f := o.figure(t)
 		s := drawn(n, uint64(100+i), o.draws(t, rectangular))
