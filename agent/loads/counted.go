@@ -69,17 +69,21 @@ func (l *loadState) decide(c *count) {
 }
 
 // blur adds what the steps of the counter add to the variance of the heat, in the
-// minute in which the count came.
+// newest minute that has any of it: a minute that is all missing has no record.
 func (l *loadState) blur(pieces []piece, c *count) {
 	var heat float64 // of the whole count, at one unit of flow a second
+	var newest *Minute
 	for i := range pieces {
 		s := &pieces[i].Sum.Sum
 		heat += s.Given - s.Taken
+		if s.Measured > 0 {
+			newest = s
+		}
 	}
 	seconds := float64(c.To-c.From) / 1e9
-	if u := resolution(l.terms.step); u > 0 && c.Known && c.Amount > 0 {
+	if u := resolution(l.terms.step); u > 0 && newest != nil && c.Known && c.Amount > 0 {
 		u *= heat / seconds / c.rate() // of the heat, as it is before it is scaled
-		pieces[len(pieces)-1].Sum.Sum.Random += u * u
+		newest.Random += u * u
 	}
 }
 

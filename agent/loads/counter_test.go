@@ -211,6 +211,24 @@ func TestResolutionBlursTheHeat(t *testing.T) {
 	near(t, "variance of a minute with three counts", closed[0].Random, 3*blur*blur, 1e-3)
 }
 
+// The count may come in a minute that has no record, since nothing of it was measured: the
+// blur is then in the minute before, so that none is lost.
+func TestBlurOfACountInAMissingMinute(t *testing.T) {
+	cfg := countingPlant()
+	cfg.Tags[flow].Resolution = 6
+	for i := range cfg.Tags[1:] {
+		cfg.Tags[1+i].MaxAge = minute
+	}
+	e := engine(t, cfg)
+	e.Advance(Beat{append(counts(0, 0), temps(0, 350, 330)...), through(1)}, nil)
+	closed := e.Advance(Beat{counts(90, 90), through(121)}, nil)
+	if len(closed) != 1 {
+		t.Fatalf("minutes %+v, want one", closed)
+	}
+	blur := 80e3 * 60 / 90 * 6 / math.Sqrt(6)
+	near(t, "variance", closed[0].Random, blur*blur, 1e-3)
+}
+
 // Temperatures that stop for 80 s while the counter tells 1 kg/s, then 3 kg/s: the line
 // is of the heat of a kilogram, from 80 to 160 kJ, and the flow is the counter's.
 func TestBridgeOfACountedFlow(t *testing.T) {
