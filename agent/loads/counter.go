@@ -84,14 +84,24 @@ func (e *Engine) enlistCounters() {
 // its maximum age.
 func (e *Engine) counts(g int64) {
 	for _, b := range e.counters {
-		t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
+		t := &e.tags[b.tag]
 		switch {
 		case t.Held.Has && t.Held.At != t.Count.At:
 			e.tell(b, g)
-		case tag.OnChange && t.Count.At != 0 && t.standing == holds && g-t.Count.To >= tag.MaxAge:
+		case g >= e.silentUntil(b.tag):
 			t.Count.From, t.Count.To, t.Count.Amount, t.Count.Known = t.Count.To, g, 0, true
 		}
 	}
+}
+
+// silentUntil returns when the silence of a counter that reports by exception tells that
+// nothing has passed; MaxInt64 where it tells nothing.
+func (e *Engine) silentUntil(tag int) int64 {
+	t := &e.tags[tag]
+	if !e.cfg.Tags[tag].OnChange || t.Count.At == 0 || t.standing != holds {
+		return math.MaxInt64
+	}
+	return after(t.Count.To, e.cfg.Tags[tag].MaxAge)
 }
 
 // tell works the difference between the reading held at g and the one before.

@@ -244,7 +244,8 @@ func (e *Engine) silence(g int64) int64 {
 	return span
 }
 
-// quiet returns how long from g on no reading comes: up to the next waiting reading or the end of event time, on the grid. It
+// quiet returns how long from g on no reading comes, and no silence of a counter tells
+// anything: up to the next waiting reading or the end of event time, on the grid. It
 // ends with the minute g lies in, or where g begins one, with a later minute, so
 // that every minute which holds anything is closed on its own.
 func (e *Engine) quiet(g int64) int64 {
@@ -252,6 +253,11 @@ func (e *Engine) quiet(g int64) int64 {
 	for i := range e.tags {
 		if p := e.tags[i].Pending; len(p) > 0 {
 			until = min(until, ceil(p[0].At, e.cfg.Grid))
+		}
+	}
+	for _, b := range e.counters {
+		if at := e.silentUntil(b.tag); at < until {
+			until = ceil(at, e.cfg.Grid)
 		}
 	}
 	if end := floor(g, minute) + minute; until > end {

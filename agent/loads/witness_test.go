@@ -110,3 +110,32 @@ func TestWitnessOfACountedFlow(t *testing.T) {
 		t.Errorf("witness %v, compared %v", w, c)
 	}
 }
+
+// A register that reports by exception tells by its silence, each 25 s, that it stands
+// still, also while nothing else is heard: however event time comes, spans end at 75, 125
+// and 200 s, and after the reading at 208 s at 258 and 308 s.
+func TestSilentWitnessAmongSilentTags(t *testing.T) {
+	const life = meter + 1
+	for _, step := range []float64{1, 7, 90} {
+		cfg := attested()
+		cfg.Tags[meter].OnChange, cfg.Tags[meter].Alive, cfg.Tags[meter].MaxAge = true, life, 25*second
+		cfg.Tags = append(cfg.Tags, Tag{Name: "LIFE", MaxAge: 10 * minute})
+		e := engine(t, cfg)
+		e.Advance(Beat{[]Reading{energy(0, 5e6), {life, through(0), 1}}, through(0)}, nil)
+		for s := step; s < 91; s += step {
+			e.Advance(Beat{nil, through(s)}, nil)
+		}
+		var closed []Minute
+		for s := 91.0; s <= 361; s++ {
+			rr := at(s, 2, 350, 330)
+			if s == 208 {
+				rr = append(rr, energy(s, 15e6))
+			}
+			closed = e.Advance(Beat{rr, through(s)}, closed)
+		}
+		w, c := compared(closed)
+		if !same(w, []float64{0, 0, 0, 10, 0}) || !same(c, []float64{0, 0, 0.16 * 75, 0.16 * 58, 0.16 * 50}) {
+			t.Errorf("in steps of %g s: witness %v, compared %v", step, w, c)
+		}
+	}
+}
