@@ -133,9 +133,9 @@ func (l *ledger) resume() error {
 	if err != nil {
 		return err
 	}
-	same := true // without a checkpoint there is nothing but the beats
+	l.take(known)
+	same := true // without a checkpoint, as a salvaged history may be, there is nothing but registers and the beats
 	if ok {
-		l.take(known)
 		if same, err = l.accounts.restore(state); err != nil {
 			return err
 		}

@@ -26,7 +26,7 @@ func openHistory(ctx context.Context, path string, o store.Options) (*store.Stor
 	for {
 		db, err := store.Open(path, o)
 		if !errors.Is(err, store.ErrLocked) || !lockable(path, syscall.LOCK_SH) {
-			return db, err
+			return db, salvageable(path, err)
 		}
 		o.Log.Warn("the history is being read, and the start waits for that: end the report or export on it", "history", path)
 		if err := awaitReaders(ctx, path, time.Now().Add(tellReaders)); err != nil {

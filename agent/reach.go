@@ -107,7 +107,7 @@ func refusal(status int, body []byte) error {
 func readFile(path string, read func(history) error) (err error) {
 	db, err := store.OpenReadOnly(path)
 	if err != nil {
-		return err
+		return salvageable(path, err)
 	}
 	defer func() { err = errors.Join(err, db.Close()) }()
 	h, err := historyOf(db)

@@ -33,11 +33,16 @@ type blockWriter struct {
 func newBlockWriter(s span) *blockWriter { return &blockWriter{name: s.name(), origin: s.earliest} }
 
 func (w *blockWriter) add(tag uint32, c *column) {
+	w.addCoded(tag, uint64(len(c.at)), appendColumn(nil, c, w.origin))
+}
+
+// addCoded adds a column of count readings as appendColumn has written it.
+func (w *blockWriter) addCoded(tag uint32, count uint64, column []byte) {
 	begin := len(w.body)
-	w.body = appendColumn(w.body, c, w.origin)
-	w.body = binary.LittleEndian.AppendUint32(w.body, checksum(columnKey(w.name, tag), w.body[begin:]))
+	w.body = append(w.body, column...)
+	w.body = binary.LittleEndian.AppendUint32(w.body, checksum(columnKey(w.name, tag), column))
 	w.head = binary.AppendUvarint(w.head, uint64(tag-w.before))
-	w.head = binary.AppendUvarint(w.head, uint64(len(c.at)))
+	w.head = binary.AppendUvarint(w.head, count)
 	w.head = binary.AppendUvarint(w.head, uint64(len(w.body)-begin))
 	w.before = tag
 	w.columns++

@@ -43,6 +43,7 @@ var commands = []command{
 	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
 	{"report", "--data DIR --from DATE [--to DATE] [--by hour|day|month] [--load NAME] [--demand LENGTH] [--format table|csv|json] [--zone NAME] [--site FILE]", "tell the heat of every load by hour, day or month", reportHelp, runReport},
 	{"export", "--data DIR --tag NAME | --load NAME [--from DATE] [--to DATE] [--format csv|json] [--zone NAME] [--progress]", "give out the readings of a tag or the minutes of a load", exportHelp, runExport},
+	{"salvage", "--data DIR [--into DIR]", "save what can be read of a damaged history to a new one", salvageHelp, runSalvage},
 	{"properties", "FLUID --temperature T[,T2,...] [--pressure P] [--barometer P] [--json] | --list [--json]", "tell the properties of a fluid", fluidHelp, runProperties},
 	{"duty", "FLUID --flow F --from T1 --to T2 [--pressure P] [--outlet-pressure P] [--barometer P] [--meter-at inlet|outlet] [--json]", "work one heat duty, with its working", fluidHelp + dutyHelp, runDuty},
 	{"version", "", "tell the version", "", runVersion},

@@ -1,0 +1,92 @@
+package agent
+
+import (
+	"errors"
+	"fmt"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"time"
+
+	"heatreeve/store"
+)
+
+// SalvageDir is the folder in a data folder that a salvaged history goes to unless
+// another is named.
+const SalvageDir = "salvaged"
+
+// Salvaged tells what [Salvage] came to.
+type Salvaged struct {
+	Path  string   // of the new file
+	Whole bool     // whether nothing is lost
+	Lines []string // what is saved and what is lost, for people
+}
+
+// Salvage saves what can be read of the history in the folder data, or in the copy of its
+// file data, to a new one in the folder into, which it makes if there is none. The damaged
+// file stays as it is.
+func Salvage(data, into string) (s Salvaged, err error) {
+	info, err := os.Stat(data)
+	if err != nil {
+		return s, err
+	}
+	from, folder := data, filepath.Dir(data)
+	if info.IsDir() {
+		from, folder = filepath.Join(data, HistoryFile), data
+	}
+	if into == "" {
+		into = filepath.Join(folder, SalvageDir)
+	}
+	if err := os.Mkdir(into, 0o700); err != nil && !errors.Is(err, fs.ErrExist) {
+		return s, err
+	}
+	s.Path = filepath.Join(into, HistoryFile)
+	r, err := store.Salvage(from, s.Path)
+	s.Lines, s.Whole = salvageLines(&r), r.Whole()
+	return s, err
+}
+
+// salvageLines tells what is saved and what is lost.
+func salvageLines(r *store.Report) (lines []string) {
+	at := func(ns int64) string { return time.Unix(0, ns).UTC().Format("2006-01-02 15:04:05 UTC") }
+	for _, part := range []struct {
+		what string
+		store.Tally
+	}{
+		{"saved: %d batches", r.Batches}, {"saved: %d readings", r.Readings}, {"saved: %d minutes", r.Minutes}, {"saved: %d hours", r.Hours},
+		{"lost: %d batches", r.LostBatches}, {"lost: %d readings", r.LostReadings}, {"lost: %d minutes that hours tell of", r.LostMinutes},
+		{"damaged: %d records of minutes", r.DamagedMinutes}, {"damaged: %d records of hours, built anew where there are minutes", r.DamagedHours},
+	} {
+		if part.Count > 0 {
+			lines = append(lines, fmt.Sprintf(part.what+", from %s to %s", part.Count, at(part.From), at(part.To)))
+		}
+	}
+	switch {
+	case r.Earlier > 0 && r.Unreadable > 0:
+		lines = append(lines, fmt.Sprintf("lost, or removed before by age or size: %d batches before the first that is saved", r.Earlier))
+	case r.Earlier > 0:
+		lines = append(lines, fmt.Sprintf("removed before by age or size: %d batches", r.Earlier))
+	}
+	if r.Unreadable > 0 {
+		lines = append(lines, fmt.Sprintf("damaged: %d places in pages of the file", r.Unreadable))
+	}
+	for _, part := range []struct {
+		what  string
+		saved bool
+	}{{"names of tags and loads", r.Names}, {"registers", r.Registers}, {"state of the accounts", r.State}} {
+		word := "lost"
+		if part.saved {
+			word = "saved"
+		}
+		lines = append(lines, word+": "+part.what)
+	}
+	return lines
+}
+
+// salvageable adds to the error of a damaged history what saves the rest of it.
+func salvageable(path string, err error) error {
+	if !errors.Is(err, store.ErrDamaged) {
+		return err
+	}
+	return fmt.Errorf("%w; heatreeve salvage --data %s saves what can be read of it to a new file and tells what is lost", err, filepath.Dir(path))
+}

@@ -1,0 +1,354 @@
+package store
+
+import (
+	"encoding/binary"
+	"errors"
+	"fmt"
+	"io/fs"
+	"math"
+	"os"
+	"syscall"
+
+	bolt "go.etcd.io/bbolt"
+)
+
+// Tally counts records, and tells between what instants (Unix nanoseconds) they lie; From
+// and To are 0 where Count is.
+type Tally struct{ Count, From, To int64 }
+
+func (t *Tally) add(n, from, to int64) {
+	switch {
+	case n == 0:
+		return
+	case t.Count == 0:
+		t.From, t.To = from, to
+	}
+	t.Count, t.From, t.To = t.Count+n, min(t.From, from), max(t.To, to)
+}
+
+// Report says what [Salvage] has saved and what is lost.
+type Report struct {
+	// Batches are what single commits brought; those that are lost show as gaps in their
+	// numbers. Where the newest are lost, their number is not known.
+	Batches, LostBatches Tally
+	// Earlier is how many batches came before the first that is saved: retention has removed
+	// them, or they are lost too, if any page is unreadable.
+	Earlier int64
+	// Readings that are lost are counted where the name of their group or block is left.
+	Readings, LostReadings Tally
+	Minutes, Hours         Tally
+	// LostMinutes are those that hours hold and that are not there, DamagedMinutes and
+	// DamagedHours the keys (up to eight loads each) whose records cannot be read.
+	LostMinutes, DamagedMinutes, DamagedHours Tally
+	// Names, Registers and State tell whether these are saved. Without State the accounts
+	// go on from Registers, and the readings that came after its checkpoint count no more.
+	Names, Registers, State bool
+	// Unreadable counts pages, and places in pages, that nothing could be read from.
+	Unreadable int64
+}
+
+// Whole tells whether nothing was lost.
+func (r *Report) Whole() bool {
+	return r.LostBatches.Count+r.LostReadings.Count+r.LostMinutes.Count+r.DamagedMinutes.Count+r.DamagedHours.Count+r.Unreadable == 0 &&
+		r.Names && r.Registers && r.State
+}
+
+// Salvage reads what can be read of the history in the file from, however damaged, and
+// writes it to a new history in the file to, which must not be there. from is not
+// changed. What passes its checksum is taken from the newest state of the file, then from
+// the state a commit before, and then from pages that neither leads to; of those minutes
+// and hours may be of an earlier state, and some may be there that retention had removed.
+// Batches are numbered anew, so that the new history has no gap. A page is read
+// once on each of these ways, so that the time is bounded by the size of the file, and memory
+// by its largest value. The error is about the files; damage is told by the Report.
+func Salvage(from, to string) (r Report, err error) {
+	f, err := os.Open(from)
+	if err != nil {
+		return r, err
+	}
+	defer f.Close()
+	if syscall.Flock(int(f.Fd()), syscall.LOCK_SH|syscall.LOCK_NB) != nil {
+		return r, fmt.Errorf("salvage %q: %w; end the agent that runs on it", from, ErrLocked)
+	}
+	info, err := f.Stat()
+	if err != nil {
+		return r, err
+	}
+	if _, err := os.Lstat(to); !errors.Is(err, fs.ErrNotExist) {
+		return r, fmt.Errorf("salvage to %q: there is something already; name a new file", to)
+	}
+	temp := to + ".salvage"
+	if err := os.Remove(temp); err != nil && !errors.Is(err, fs.ErrNotExist) {
+		return r, err
+	}
+	if err := create(temp); err != nil {
+		return r, err
+	}
+	err = salvageInto(openRaw(f, info.Size()), temp, &r)
+	if err == nil {
+		return r, moveTo(temp, to)
+	}
+	return r, errors.Join(fmt.Errorf("salvage %q: %w", from, err), os.Remove(temp))
+}
+
+func salvageInto(raw *rawFile, temp string, r *Report) error {
+	db, err := openBolt(temp, 0)
+	if err != nil {
+		return err
+	}
+	if len(raw.metas) == 0 {
+		r.Unreadable++ // both meta pages
+	}
+	z := &salvage{raw: raw, db: db, report: r, damaged: map[string]bool{}}
+	for i := range z.groups {
+		z.groups[i] = map[string][][]byte{}
+	}
+	return errors.Join(z.all(), db.Close())
+}
+
+// salvage is one run of [Salvage].
+type salvage struct {
+	raw     *rawFile
+	db      *bolt.DB
+	report  *Report
+	trees   []*salvagedTree        // of the newest state and the one before
+	groups  [3]map[string][][]byte // by name: of the newest state, the one before, and of neither
+	unsure  bool                   // groups of the newest state may be missing without a trace
+	damaged map[string]bool        // keys of minutes and hours that were met damaged; in front m or h
+	batch   []keyed
+	bytes   int
+}
+
+// salvagedTree is what one state of the file holds beside minutes, hours and groups.
+type salvagedTree struct {
+	values map[string][]byte // by bucket and key
+	recent [][]byte          // the headers of the buckets in it
+	first  []uint64          // the number of the first record of each
+}
+
+// keyed is a record on its way to a bucket of the new file.
+type keyed struct{ bucket, key, value []byte }
+
+func (z *salvage) all() error {
+	for _, m := range z.raw.metas {
+		if err := z.tree(m.root); err != nil {
+			return err
+		}
+	}
+	version := z.value("meta", keyVersion, func(v []byte) bool { return len(v) == 4 })
+	if v := versionOf(version); version != nil && (v < firstVersion || v > Version) {
+		return fmt.Errorf("%w: it is %s, this program reads versions %d to %d", ErrVersion, versionText(version), firstVersion, Version)
+	}
+	if err := z.strays(); err != nil {
+		return err
+	}
+	if err := z.flush(); err != nil {
+		return err
+	}
+	if err := z.records(); err != nil {
+		return err
+	}
+	return z.hours()
+}
+
+// tree takes what the tree of one state leads to.
+func (z *salvage) tree(root uint64) (err error) {
+	w := z.raw.newWalk()
+	t := &salvagedTree{values: map[string][]byte{}}
+	z.trees = append(z.trees, t)
+	ofRecords := int64(0)
+	tops := 0
+	keep := func(e error) { err = errors.Join(err, e) }
+	w.tree(root, 0, func(top element) {
+		if !top.bucket {
+			return
+		}
+		name := string(top.key)
+		tops++
+		defer func(before int64) {
+			if name == "minutes" || name == "hours" {
+				ofRecords -= w.bad - before
+			}
+		}(w.bad)
+		w.bucket(top.value, func(e element) {
+			switch name {
+			case "minutes", "hours":
+				if !e.bucket {
+					keep(z.keyed(name, e))
+				}
+			case "journal", "sealed":
+				z.group(len(z.trees)-1, e)
+			case "recent":
+				if len(e.key) == 8 {
+					t.recent = append(t.recent, e.value)
+					t.first = append(t.first, binary.BigEndian.Uint64(e.key))
+				}
+			default:
+				t.values[name+"/"+string(e.key)] = e.value
+			}
+		})
+	})
+	if len(z.trees) == 1 {
+		z.report.Unreadable = w.bad
+		z.unsure = ofRecords+w.bad > 0 || tops < len(buckets(firstVersion))
+	}
+	return err
+}
+
+// strays takes what lies in leaves that no tree leads to, if the newest tree is not whole.
+func (z *salvage) strays() error {
+	if len(z.raw.metas) > 0 && z.report.Unreadable == 0 {
+		return nil
+	}
+	for id := range uint64(len(z.raw.reached)) {
+		if z.raw.reached[id] {
+			continue
+		}
+		b := z.raw.run(id)
+		if len(b) < pageHead || binary.LittleEndian.Uint16(b[8:]) != pageLeaf || binary.LittleEndian.Uint64(b) != id {
+			continue
+		}
+		all, _ := elements(b)
+		for _, e := range all {
+			if e.bucket {
+				z.group(len(z.groups)-1, e)
+				continue
+			}
+			if err := z.stray(e); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}
+
+// stray takes a minute or an hour whose bucket is not known. One that might be either is
+// left.
+func (z *salvage) stray(e element) error {
+	_, notMinute := parseMinutes(nil, e.key, e.value, anyLoad)
+	_, notHour := parseHours(nil, e.key, e.value, anyLoad)
+	switch {
+	case notMinute == nil && notHour != nil:
+		return z.keyed("minutes", e)
+	case notHour == nil && notMinute != nil:
+		return z.keyed("hours", e)
+	}
+	return nil
+}
+
+// group notes where a group or block lies, by whence it is known.
+func (z *salvage) group(whence int, e element) {
+	if _, err := parseName(e.key); err == nil && len(e.value) >= bucketHead {
+		of := z.groups[whence]
+		of[string(e.key)] = append(of[string(e.key)], append([]byte{}, e.value...))
+	}
+}
+
+// keyed takes the minutes or hours under a key, if they can be read.
+func (z *salvage) keyed(bucket string, e element) (err error) {
+	if bucket == "minutes" {
+		_, err = parseMinutes(nil, e.key, e.value, anyLoad)
+	} else {
+		_, err = parseHours(nil, e.key, e.value, anyLoad)
+	}
+	if err != nil {
+		if len(e.key) == 12 && len(z.damaged) < keysATrim {
+			z.damaged[bucket[:1]+string(e.key)] = true
+		}
+		return nil
+	}
+	z.batch = append(z.batch, keyed{[]byte(bucket), append([]byte{}, e.key...), append([]byte{}, e.value...)})
+	if z.bytes += len(e.value); len(z.batch) < keysAStep && z.bytes < compactSlice {
+		return nil
+	}
+	return z.flush()
+}
+
+// flush writes what was taken, but for what is there already.
+func (z *salvage) flush() error {
+	batch := z.batch
+	z.batch, z.bytes = nil, 0
+	return z.db.Update(func(tx *bolt.Tx) error {
+		for _, k := range batch {
+			b := tx.Bucket(k.bucket)
+			b.FillPercent = appendFill
+			if b.Get(k.key) != nil {
+				continue
+			}
+			if err := b.Put(k.key, k.value); err != nil {
+				return err
+			}
+		}
+		return nil
+	})
+}
+
+// hours counts what is saved, and builds the hours that are lost from their minutes.
+func (z *salvage) hours() error {
+	s := &Store{path: z.db.Path(), db: z.db, log: discard()}
+	if err := z.count(); err != nil {
+		return err
+	}
+	for done := false; !done; {
+		err := s.update(func(tx *bolt.Tx) error {
+			before, _ := readHourMark(tx)
+			if err := s.advanceHours(tx, before, keysAStep); err != nil {
+				return err
+			}
+			after, _ := readHourMark(tx)
+			done = after == before
+			return nil
+		})
+		if err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// count counts minutes and hours, and the minutes that hours hold beyond those.
+func (z *salvage) count() error {
+	r := z.report
+	for key := range z.damaged {
+		lost := &r.DamagedMinutes
+		if key[0] == 'h' {
+			lost = &r.DamagedHours
+		}
+		at := keyTime([]byte(key[1:]))
+		lost.add(1, at, at)
+	}
+	return z.db.Update(func(tx *bolt.Tx) error {
+		minutes, hours := tx.Bucket(bucketMinutes).Cursor(), tx.Bucket(bucketHours).Cursor()
+		there := map[uint32]uint32{}
+		mk, mv := minutes.Seek(keyFirstMinute)
+		take := func(until int64, all bool) {
+			for clear(there); mk != nil && (all || keyTime(mk) < until); mk, mv = minutes.Next() {
+				found, _ := parseMinutes(nil, mk, mv, anyLoad)
+				r.Minutes.add(int64(len(found)), keyTime(mk), keyTime(mk))
+				for _, m := range found {
+					if m.Start >= until-hourNanos {
+						there[m.Load]++
+					}
+				}
+			}
+		}
+		mark := z.hourMark(tx)
+		taken := int64(math.MinInt64)
+		for k, v := hours.Seek(keyFirstMinute); k != nil; k, v = hours.Next() {
+			at := keyTime(k)
+			if at != taken || r.Hours.Count == 0 {
+				take(hourAfter(at), false)
+				taken = at
+			}
+			found, _ := parseHours(nil, k, v, anyLoad)
+			r.Hours.add(int64(len(found)), at, at)
+			for _, h := range found {
+				if n := there[h.Load]; at >= mark.trimmed && h.Minutes > n {
+					r.LostMinutes.add(int64(h.Minutes-n), at, at)
+				}
+			}
+		}
+		take(math.MaxInt64, true)
+		return putHourMark(tx, hourMark{math.MinInt64, mark.trimmed})
+	})
+}
