@@ -68,6 +68,9 @@ func (h *history) export(s Selection) (*export, error) {
 	if err := s.check(); err != nil {
 		return nil, err
 	}
+	if s.Format == parquetFormat {
+		return nil, queryErrorf("format %q: the agent's page gives csv and json; heatreeve export makes parquet of it", s.Format)
+	}
 	x := &export{db: h.db, minutes: s.Load != "", json: s.Format == "json", through: h.through(), zone: time.UTC}
 	if h.zone != nil {
 		x.zone = h.zone

@@ -22,7 +22,7 @@ func BenchmarkExport(b *testing.B) {
 	for _, hours := range []int{24, 240} {
 		path := filepath.Join(b.TempDir(), HistoryFile)
 		plantHistory(b, path, hours)
-		for _, s := range []Selection{{Tag: "T-7"}, {Tag: "T-7", Format: "json"}, {Load: "L-3"}} {
+		for _, s := range []Selection{{Tag: "T-7"}, {Tag: "T-7", Format: "json"}, {Tag: "T-7", Format: "parquet"}, {Load: "L-3"}, {Load: "L-3", Format: "parquet"}} {
 			b.Run(fmt.Sprintf("%dh/%s%s%s", hours, s.Tag, s.Load, s.Format), func(b *testing.B) {
 				db, err := store.OpenReadOnly(path)
 				if err != nil {
@@ -36,16 +36,12 @@ func BenchmarkExport(b *testing.B) {
 					b.StopTimer()
 					before := heap(true)
 					b.StartTimer()
-					x, err := h.export(s)
-					if err != nil {
-						b.Fatal(err)
-					}
-					m := &meter{w: io.Discard, json: x.json}
+					m := &meter{w: io.Discard, json: s.Format == "json"}
 					m.tell = func(Progress) {
 						now := heap(false)
 						most = max(most, now-min(before, now))
 					}
-					if err := x.write(b.Context(), m); err != nil {
+					if err := m.exportAs(s, func(s Selection) error { return m.read(b.Context(), h, s) }); err != nil {
 						b.Fatal(err)
 					}
 					rows += m.Rows

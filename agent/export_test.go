@@ -250,7 +250,7 @@ func TestExportRefusals(t *testing.T) {
 	}{
 		{Selection{}, 400, "tag or load must be given"},
 		{Selection{Tag: "TT-1", Load: "x"}, 400, `tag "TT-1" and load "x": an export is of one of them`},
-		{Selection{Tag: "TT-1", Format: "xml"}, 400, `format "xml": allowed are csv, json`},
+		{Selection{Tag: "TT-1", Format: "xml"}, 400, `format "xml": allowed are csv, json, parquet`},
 		{Selection{Tag: "tt-1"}, 400, `tag "tt-1" is not in the history; did you mean "TT-1"?`},
 		{Selection{Tag: "pressure"}, 400, `tag "pressure" is not in the history; there are: TT-1, FT-1`},
 		{Selection{Load: "boiler"}, 400, `load "boiler" is not in the history`},

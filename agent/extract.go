@@ -28,9 +28,26 @@ func Extract(ctx context.Context, data string, s Selection, w io.Writer, tell fu
 		return err
 	}
 	m := &meter{w: w, tell: tell, json: s.Format == "json"}
-	err := reach(data, func(a address) error { return m.ask(ctx, a, s) }, func(h history) error { return m.read(ctx, h, s) })
+	err := m.exportAs(s, func(s Selection) error {
+		return reach(data, func(a address) error { return m.ask(ctx, a, s) }, func(h history) error { return m.read(ctx, h, s) })
+	})
 	if err != nil && ctx.Err() != nil {
 		return fmt.Errorf("stopped after %d rows, what was written is not the whole: %w", m.Rows, context.Cause(ctx))
+	}
+	return err
+}
+
+// exportAs has an export made, and Parquet of it where that is wanted: a file that has its end
+// only where all rows have come.
+func (m *meter) exportAs(s Selection, export func(Selection) error) error {
+	if s.Format != parquetFormat {
+		return export(s)
+	}
+	file := newParquetFile(m.w)
+	m.w, s.Format = file, "csv"
+	err := export(s)
+	if m.ended {
+		err = errors.Join(err, file.close())
 	}
 	return err
 }
@@ -42,7 +59,11 @@ func (m *meter) read(ctx context.Context, h history, s Selection) error {
 		return err
 	}
 	m.Until, m.Note = x.until(), x.note
-	return errors.Join(x.write(ctx, m), x.whole())
+	if err := x.write(ctx, m); err != nil {
+		return err
+	}
+	m.ended = true
+	return x.whole()
 }
 
 // ask has the agent at a export.
@@ -72,6 +93,7 @@ func (m *meter) take(a address, resp *http.Response) (err error) {
 	if n := resp.Trailer.Get(rowsTrailer); n != strconv.FormatInt(m.Rows, 10) {
 		return fmt.Errorf("agent at %s: its export has %d rows, and should have %q", a.hostPort, m.Rows, n)
 	}
+	m.ended = true
 	if damage := resp.Trailer.Get(damageTrailer); damage != "" {
 		return errors.New(damage)
 	}
@@ -91,6 +113,7 @@ type meter struct {
 	named bool   // the line of names has passed
 	line  []byte // what has come of the line under way
 	fault error  // of w, or of the rows
+	ended bool   // all rows have passed
 }
 
 func (m *meter) Write(p []byte) (n int, err error) {

@@ -3,6 +3,7 @@ package agent
 import (
 	"math"
 	"net/url"
+	"slices"
 	"time"
 
 	"heatreeve/agent/account"
@@ -16,7 +17,7 @@ type Selection struct {
 	// history goes. To is not in the export any more.
 	From, To string
 	Zone     string // IANA name of the time zone of From and To; empty for the site's
-	Format   string // csv or json; empty is csv
+	Format   string // csv, json or parquet; empty is csv
 }
 
 // values are the parameters of s as the agent's page takes them.
@@ -57,8 +58,8 @@ func (s *Selection) check() error {
 		return queryErrorf("tag or load must be given")
 	case s.Tag != "" && s.Load != "":
 		return queryErrorf("tag %q and load %q: an export is of one of them", s.Tag, s.Load)
-	case s.Format != "" && s.Format != "csv" && s.Format != "json":
-		return queryErrorf("format %q: allowed are csv, json", s.Format)
+	case !slices.Contains([]string{"", "csv", "json", parquetFormat}, s.Format):
+		return queryErrorf("format %q: allowed are csv, json, parquet", s.Format)
 	}
 	return nil
 }

@@ -16,7 +16,8 @@ is their event time, stamped tells whether it came with the value rather than fr
 the clock at arrival, and the value is in SI: K, Pa absolute, kg/s, m3/s, mol/s or a
 ratio; value_SI and a note on stderr where a tag has not always had the same. Minutes of a load come in the order of time; means are empty where nothing
 was measured. All times are UTC. csv (RFC 4180) has its units in the header; json is
-an object a line.
+an object a line; parquet is a file of its own kind, with the time in ns, and goes
+to a file or a pipe.
 
 DATE is written as for a report; by whose clock, --zone tells. The data folder may be
 that of an agent that runs: it gives the rows out, and goes on undisturbed. A copy
@@ -31,7 +32,7 @@ func runExport(ctx context.Context, c *call) error {
 	c.flags.StringVar(&s.Load, "load", "", "`NAME` of the load whose minutes to export")
 	c.flags.StringVar(&s.From, "from", "", "`DATE` at which the export begins; without it, where the history does")
 	c.flags.StringVar(&s.To, "to", "", "`DATE` at which it ends, not in it any more; without it, where the history does")
-	c.flags.StringVar(&s.Format, "format", "csv", "`csv|json`")
+	c.flags.StringVar(&s.Format, "format", "csv", "`csv|json|parquet`")
 	c.flags.StringVar(&s.Zone, "zone", "", "IANA `NAME` of the time zone of the dates, such as Europe/Dublin; without it, that of the history")
 	progress := c.flags.Bool("progress", false, "tell on stderr how far it is, also where that is no terminal")
 	if err := c.parse(0, ""); err != nil {
@@ -39,6 +40,9 @@ func runExport(ctx context.Context, c *call) error {
 	}
 	if *data == "" || s.Tag == "" && s.Load == "" {
 		return wrongf("heatreeve export: --data and --tag or --load must be given; see heatreeve export --help")
+	}
+	if _, shown := terminal(c.stdout); shown && s.Format == "parquet" {
+		return wrongf("heatreeve export: --format parquet is no text: send it to a file, as in > readings.parquet")
 	}
 	line := newProgressLine(c, *progress)
 	note := ""

@@ -120,7 +120,7 @@ func TestExportRefusals(t *testing.T) {
 		{"--data " + data, exitWrong, "--data and --tag or --load must be given"},
 		{"--data " + data + " --tag TT-201 extra", exitWrong, `unexpected "extra"`},
 		{"--data " + data + " --tag TT-201 --load hot-water", exitWrong, `--tag "TT-201" and load "hot-water": an export is of one of them`},
-		{"--data " + data + " --tag TT-201 --format parquet", exitWrong, `heatreeve export: --format "parquet": allowed are csv, json`},
+		{"--data " + data + " --tag TT-201 --format orc", exitWrong, `heatreeve export: --format "orc": allowed are csv, json, parquet`},
 		{"--data " + data + " --tag TT-210", exitWrong, `--tag "TT-210" is not in the history; did you mean "TT-201"?`},
 		{"--data " + data + " --load hot-watre", exitWrong, `--load "hot-watre" is not in the history; did you mean "hot-water"?`},
 		{"--data " + data + " --tag TT-201 --from 24.10.2026", exitWrong, `--from "24.10.2026" is no date`},
