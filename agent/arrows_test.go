@@ -32,13 +32,14 @@ var arrows = map[string][]string{
 	"agent/account": {
 		"agent/loads",
 	},
+	"agent/parquet": {},
 	"agent/metrics": {
 		"agent/view", "agent/loads", "agent/design",
 	},
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "ingest", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
@@ -46,9 +47,10 @@ var arrows = map[string][]string{
 // outside lists the pure packages and what they must not touch: clocks, files,
 // sockets, loggers.
 var outside = map[string][]string{
-	"thermo/...":   {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
-	"agent/loads":  {"os", "net", "log", "log/slog", "context", "time", "net/http"},
-	"agent/design": {"os", "net", "log", "log/slog", "context", "net/http"},
+	"thermo/...":    {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
+	"agent/loads":   {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"agent/design":  {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/parquet": {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/account": {
 		"os", "net", "log", "log/slog", "context", "net/http",
 	},

@@ -77,11 +77,11 @@ func TestParquetOfMinutes(t *testing.T) {
 	w := parquet.NewWriter(&want, columns)
 	r := newRows(f, false, names)
 	minutes := []store.Minute{
-		{Start: week.UnixNano(), Measured: 60, Given: 7e5, Duty: 7e5 / 60., Inlet: 353.15, Random: 3, Witness: 1, Systematic: [store.Shares]float64{-5}},
+		{Start: week.UnixNano(), Measured: 60, Given: 7e5, Duty: 11666.5, Inlet: 353.25, Random: 3, Witness: 1, Systematic: [store.Shares]float64{-5}},
 		{Start: week.Add(time.Minute).UnixNano(), Missing: 60},
 	}
 	for i, figures := range []map[string]float64{
-		{"measured_s": 60, "given_J": 7e5, "duty_W": 7e5 / 60., "inlet_K": 353.15, "random_variance_J2": 3, "witness_counted_J": 1, "systematic_flow_J": -5},
+		{"measured_s": 60, "given_J": 7e5, "duty_W": 11666.5, "inlet_K": 353.25, "random_variance_J2": 3, "witness_counted_J": 1, "systematic_flow_J": -5},
 		{"missing_s": 60},
 	} {
 		minuteRow(r, &minutes[i])

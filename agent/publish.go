@@ -25,7 +25,7 @@ func (a *Agent) publish(r *rhythm) {
 		Broker: view.Broker{
 			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
 		},
-		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Lost: l.lost, LostMinutes: l.lostMinutes},
+		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Damaged: l.store.Damaged(), Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
 	if a.clock != nil {
 		v.ClockSteps, _ = a.clock.state()

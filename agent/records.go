@@ -153,8 +153,8 @@ func minuteRecord(m store.Minute) account.Record {
 		Amounts: account.Amounts{
 			Measured: shortSpan(m.Measured), Bridged: shortSpan(m.Bridged), Latent: shortSpan(m.Latent),
 			Given: m.Given, Taken: m.Taken, BridgedGiven: m.BridgedGiven, BridgedTaken: m.BridgedTaken,
-			Served:      m.Duty * m.Measured,
-			Uncertainty: uncertainty(&m.Systematic, m.Random, m.DutyUncertainty*m.Measured),
+			Served:      served(m.Given, m.Taken, m.Duty),
+			Uncertainty: uncertainty(&m.Systematic, m.Random, untold(&m)),
 			Witness:     m.Witness, Compared: m.Compared,
 		},
 	}
@@ -168,8 +168,8 @@ func (r *records) hourRecord(h store.Hour) account.Record {
 		Amounts: account.Amounts{
 			Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged), Latent: shortSpan(h.Latent),
 			Given: h.Given, Taken: h.Taken, BridgedGiven: h.BridgedGiven, BridgedTaken: h.BridgedTaken,
-			Served:      h.Duty * h.Measured,
-			Uncertainty: uncertainty(&h.Systematic, h.Random, h.HeatUncertainty),
+			Served:      served(h.Given, h.Taken, h.Duty),
+			Uncertainty: uncertainty(&h.Systematic, h.Random, h.Untold),
 			Witness:     h.Witness, Compared: h.Compared,
 		},
 	}
@@ -179,16 +179,23 @@ func (r *records) hourRecord(h store.Hour) account.Record {
 	return x
 }
 
-// uncertainty is that of a record, in its parts where it has them. Records from before
-// these were kept have only the whole.
-func uncertainty(parts *[store.Shares]float64, variance, whole float64) (u account.Uncertainty) {
-	if *parts == ([store.Shares]float64{}) && variance == 0 {
-		u.Unparted = whole
-		return u
-	}
+// served is the heat in the load's service: the net heat, by the sign of the mean duty, of
+// which the record keeps fewer digits.
+func served(given, taken, duty float64) float64 { return math.Copysign(given-taken, duty) }
+
+// uncertainty is that of a record in its parts, and what of it was kept without these.
+func uncertainty(parts *[store.Shares]float64, variance, untold float64) account.Uncertainty {
+	u := account.Uncertainty{Variance: variance, Unparted: untold}
 	copy(u.Parts[:], parts[:])
-	u.Variance = variance
 	return u
+}
+
+// untold is the whole uncertainty of a minute from before its parts were kept.
+func untold(m *store.Minute) float64 {
+	if m.Systematic == ([store.Shares]float64{}) && m.Random == 0 {
+		return m.DutyUncertainty * m.Measured
+	}
+	return 0
 }
 
 // shortSpan is a short time in ns.

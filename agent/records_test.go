@@ -201,7 +201,8 @@ func TestReportOfHoursWithoutMinutes(t *testing.T) {
 	h := historyIn(t, db, "Europe/Dublin")
 	checkRamp(t, &h, Query{From: "2026-10-24", To: "2026-10-26"}, 0, 49*60)
 	// Its last quarter is the highest of the day: known to the hour, and measured for what
-	// two seconds a minute, all of them taken from it, leave of it.
+	// two seconds a minute, all of them taken from it, leave of it. An hour keeps its
+	// demand to a part in ten million.
 	r, err := h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25"})
 	if err != nil {
 		t.Fatal(err)
@@ -318,14 +319,14 @@ func TestRegistersBesideTheSum(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if err := db.Commit(store.Batch{Registers: []store.Register{{Load: ids["ramp"], Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}}); err != nil {
+	if err := db.Commit(store.Batch{Registers: []store.Register{{Load: ids["ramp"], Given: 5e9, Taken: 7, BridgedGiven: 3, BridgedTaken: 2, Measured: 11, Bridged: 17, Missing: 13}}}); err != nil {
 		t.Fatal(err)
 	}
 	h := historyIn(t, db, "UTC")
 	for _, tt := range []struct {
 		to   string
 		want *Register
-	}{{"", &Register{Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}, {"2027-01-01", &Register{Given: 5e9, Taken: 7, Measured: 11, Missing: 13}}, {"2026-10-24T05:00", nil}} {
+	}{{"", &Register{5e9, 7, 3, 2, 11, 17, 13}}, {"2027-01-01", &Register{5e9, 7, 3, 2, 11, 17, 13}}, {"2026-10-24T05:00", nil}} {
 		r, err := h.report(t.Context(), Query{From: "2026-10-24", To: tt.to})
 		if err != nil {
 			t.Fatal(err)

@@ -179,7 +179,7 @@ func checkPage(t *testing.T, r *running, s *view.Snapshot) {
 	if err != nil || given < s.Loads[0].Booked.Given {
 		t.Errorf("the page shows %g J given (%v), the snapshot before it %g J", given, err, s.Loads[0].Booked.Given)
 	}
-	for name, want := range map[string]float64{"heatreeve_broker_connected": 1, "heatreeve_history_writable": 1} {
+	for name, want := range map[string]float64{"heatreeve_broker_connected": 1, "heatreeve_history_writable": 1, "heatreeve_history_damaged_records_total": 0} {
 		if v, err := r.metric(t, name); err != nil || v != want {
 			t.Errorf("%s is %v, %v; want %v", name, v, err, want)
 		}

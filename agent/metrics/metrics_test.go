@@ -174,12 +174,17 @@ heatreeve_load_mass_flow_kilograms_per_second{load="hot-water"} 3
 func TestHistoryWritable(t *testing.T) {
 	for fault, want := range map[string]string{"": "1", "no space left on device": "0"} {
 		s := snapshot()
-		s.History.Fault = fault
+		s.History.Fault, s.History.Damaged = fault, 3
 		text := `
 # HELP heatreeve_history_writable 1 while the history takes what is written, 0 since a commit has failed.
 # TYPE heatreeve_history_writable gauge
 heatreeve_history_writable ` + want + "\n"
-		if err := testutil.GatherAndCompare(registry(s, instant), strings.NewReader(text), "heatreeve_history_writable"); err != nil {
+		text += `
+# HELP heatreeve_history_damaged_records_total Records of the history that could not be read since the agent started, when something was to be made of them; the log tells which.
+# TYPE heatreeve_history_damaged_records_total counter
+heatreeve_history_damaged_records_total 3
+`
+		if err := testutil.GatherAndCompare(registry(s, instant), strings.NewReader(text), "heatreeve_history_writable", "heatreeve_history_damaged_records_total"); err != nil {
 			t.Errorf("%q: %v", fault, err)
 		}
 	}

@@ -75,6 +75,7 @@ type History struct {
 	Failures  uint64 // commits that failed since the agent started
 	Fault     string // why the last commit failed; empty when it did not
 	Lost      uint64 // readings given up because the disk took nothing for long
+	Damaged   int64  // records that could not be read since the agent started, when something was to be made of them
 	// LostMinutes are minute records given up likewise.
 	LostMinutes uint64
 }
