@@ -1,11 +1,13 @@
 package store
 
 import (
+	"bytes"
 	"encoding/binary"
 	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"os"
 	"path/filepath"
 	"testing"
 	"time"
@@ -428,5 +430,31 @@ func BenchmarkHourEnds(b *testing.B) {
 		b.ReportMetric(float64(took[0].Microseconds())/60e3, "ms/minute")
 		b.ReportMetric(float64(took[1].Microseconds())/1e3, "ms/hour")
 		b.StartTimer()
+	}
+}
+
+// BenchmarkSalvage salvages a year of minutes of 10 loads and weeks of readings of 50
+// tags, of which the root page is wiped, so that every page is looked at.
+func BenchmarkSalvage(b *testing.B) {
+	path, _ := year(b, defaultBytes)
+	whole, err := os.ReadFile(path)
+	if err != nil {
+		b.Fatal(err)
+	}
+	raw := openRaw(bytes.NewReader(whole), int64(len(whole)))
+	for _, m := range raw.metas {
+		clear(whole[int64(m.root)*raw.pageSize:][:raw.pageSize])
+	}
+	if err := os.WriteFile(path, whole, fileMode); err != nil {
+		b.Fatal(err)
+	}
+	for b.Loop() {
+		to := filepath.Join(b.TempDir(), "to.db")
+		r, err := Salvage(path, to)
+		if err != nil || r.Minutes.Count != 365*24*60*10 {
+			b.Fatalf("%+v, %v", r, err)
+		}
+		b.ReportMetric(float64(len(whole)), "B/file")
+		b.ReportMetric(float64(r.Readings.Count), "readings")
 	}
 }

@@ -61,13 +61,16 @@ func (r *rawFile) meta(at, pageSize int64) (m rawMeta, ok bool) {
 	return rawMeta{binary.LittleEndian.Uint64(b[metaRoot:]), binary.LittleEndian.Uint64(b[metaID:])}, ok
 }
 
-// run reads a page with what follows on it, nil where that cannot be.
+// run reads a leaf or branch with what follows on it, nil where there is none.
 func (r *rawFile) run(id uint64) []byte {
 	if id < 2 || id >= uint64(r.size/r.pageSize) {
 		return nil
 	}
 	head := make([]byte, pageHead)
 	if _, err := r.file.ReadAt(head, int64(id)*r.pageSize); err != nil {
+		return nil
+	}
+	if flags := binary.LittleEndian.Uint16(head[8:]); flags != pageLeaf && flags != pageBranch {
 		return nil
 	}
 	n := (int64(binary.LittleEndian.Uint32(head[12:])) + 1) * r.pageSize

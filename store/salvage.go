@@ -205,10 +205,10 @@ func (z *salvage) strays() error {
 			continue
 		}
 		b := z.raw.run(id)
-		if len(b) < pageHead || binary.LittleEndian.Uint16(b[8:]) != pageLeaf || binary.LittleEndian.Uint64(b) != id {
+		if len(b) < pageHead || binary.LittleEndian.Uint64(b) != id {
 			continue
 		}
-		all, _ := elements(b)
+		all, _ := elements(b) // keys of a branch have no value, and are nothing
 		for _, e := range all {
 			if e.bucket {
 				z.group(len(z.groups)-1, e)

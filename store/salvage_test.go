@@ -71,6 +71,9 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 	if readings != r.Readings.Count || minutes != r.Minutes.Count {
 		t.Fatalf("%d readings and %d minutes are there: %+v", readings, minutes, r)
 	}
+	if all := minutes + r.LostMinutes.Count; r.Hours.Count == 10 && (all < 599 || all > 600) {
+		t.Fatalf("%d minutes are saved or told as lost: %+v", all, r)
+	}
 	if kept := r.Earlier + r.Batches.Count + r.LostBatches.Count; kept > damageNumbers || last == damageNumbers && kept != damageNumbers {
 		t.Fatalf("%d batches up to number %d are told: %+v", kept, last, r)
 	}
@@ -201,5 +204,21 @@ func TestSalvageLeavesOthers(t *testing.T) {
 	commit(t, s, Batch{})
 	if _, err := Salvage(path, to+"x"); err == nil {
 		t.Error("a file that is being written was salvaged")
+	}
+}
+
+// TestSalvageNoise salvages a file in which nothing is left to read, and one whose meta
+// page leads to noise: both come to an end at once, and with nothing.
+func TestSalvageNoise(t *testing.T) {
+	_, whole, size := sample(t)
+	rng := rand.New(rand.NewPCG(23, 24))
+	b := append([]byte{}, whole...)
+	for i := 2 * size; i < len(b); i++ {
+		b[i] = byte(rng.Uint32())
+	}
+	for _, noise := range [][]byte{b, b[2*size:], b[:size+7], b[:3]} {
+		if r := salvaged(t, t.TempDir(), noise); r.Batches.Count+r.Minutes.Count+r.Hours.Count != 0 || r.Unreadable == 0 || r.Whole() {
+			t.Errorf("of noise: %+v", r)
+		}
 	}
 }

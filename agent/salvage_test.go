@@ -1,0 +1,64 @@
+package agent
+
+import (
+	"os"
+	"path/filepath"
+	"testing"
+
+	"heatreeve/store"
+)
+
+// Whatever page of its history is wiped, the accounts go on from what is salvaged: from the
+// registers of the last commit or the one before, and never from more.
+func TestLedgerAfterASalvage(t *testing.T) {
+	s := parsed(t, benchSite)
+	dir := t.TempDir()
+	path := filepath.Join(dir, HistoryFile)
+	l, shut := open(t, s, path, store.Options{})
+	var totals []float64
+	for at := int64(0); at < 1200; at += 30 {
+		feed(l, at, at+30)
+		if err := l.commit(clock, at%300 == 0); err != nil {
+			t.Fatal(err)
+		}
+		totals = append(totals, l.registers()[0].Given)
+	}
+	shut()
+	whole, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	last, size := totals[len(totals)-1], os.Getpagesize()
+	exact, stateless := 0, 0
+	for page := range min(len(whole)/size, 60) {
+		b := append([]byte{}, whole...)
+		clear(b[page*size : (page+1)*size])
+		damaged, into := filepath.Join(dir, "damaged.db"), filepath.Join(t.TempDir(), "to.db")
+		if err := os.WriteFile(damaged, b, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		r, err := store.Salvage(damaged, into)
+		if err != nil {
+			t.Fatal(err)
+		}
+		l, shut := open(t, s, into, store.Options{})
+		got := l.registers()[0].Given
+		if r.Names && (r.Registers || r.State) && got != last && got != totals[len(totals)-2] || got > last {
+			t.Errorf("page %d wiped: %g J, want %g; %+v", page, got, last, r)
+		}
+		if got == last {
+			exact++
+		}
+		if !r.State {
+			stateless++
+		}
+		feed(l, 1200, 1260)
+		if err := l.commit(clock, false); err != nil {
+			t.Errorf("page %d wiped: %v", page, err)
+		}
+		shut()
+	}
+	if exact < 10 || stateless == 0 {
+		t.Errorf("%d pages wiped left the registers, %d took the state", exact, stateless)
+	}
+}
