@@ -8,6 +8,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/loads"
 	"heatreeve/store"
 )
 
@@ -333,6 +334,46 @@ func TestRegistersBesideTheSum(t *testing.T) {
 		}
 		if got := r.Loads[0].Register; (got == nil) != (tt.want == nil) || got != nil && *got != *tt.want {
 			t.Errorf("to %q: register %+v, want %+v", tt.to, got, tt.want)
+		}
+	}
+}
+
+// All that a minute tells comes through the store into the report, by hours and by minutes:
+// closed forms of equal minutes.
+func TestReportOfAllThatAMinuteTells(t *testing.T) {
+	const n = 1440
+	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, func(string, int) (store.Minute, bool) {
+		m := store.Minute{
+			Measured: 48, Bridged: 9, Missing: 3, Latent: 30, Given: 48e3, BridgedGiven: 8e3, BridgedTaken: 1e3,
+			Duty: 1e3, DutyMin: 900, DutyMax: 1100, DutyUncertainty: 12, Witness: 50e3, Compared: 49e3, Random: 96 * 96,
+		}
+		m.Systematic[loads.PartFlow], m.Systematic[loads.PartCp] = 384, -288 // 3 and 4 of 5, times 96
+		return m, true
+	}, "all")
+	h := historyIn(t, db, "Europe/Dublin")
+	for _, q := range []Query{{From: "2026-10-24", To: "2026-10-25"}, {From: "2026-10-24", To: "2026-10-25", By: "hour"}, {From: "2026-10-24", To: "2026-10-25", Demand: 5 * time.Minute}} {
+		r, err := h.report(t.Context(), q)
+		if err != nil {
+			t.Fatal(err)
+		}
+		p := r.Loads[0].Total
+		if p.Given != n*48e3 || p.BridgedGiven != n*8e3 || p.BridgedTaken != n*1e3 || p.Measured != n*48 || p.Bridged != n*9 || p.Missing != n*3 || p.Latent != n*30 || p.Coverage != 0.8 || *p.Mean != 1e3 {
+			t.Errorf("%+v: %+v", q, p)
+		}
+		if w := p.Witness; w == nil || w.Counted != n*50e3 || w.Served != n*49e3 || !near12(w.Deviation, 49./50-1) {
+			t.Errorf("%+v: witness %+v", q, w)
+		}
+		systematic, random := n*480., math.Sqrt(n)*96 // the parts are kept to a part in a thousand
+		off := func(got, want float64) bool { return math.Abs(got/want-1) > 2e-3 }
+		if off(p.Systematic, systematic) || off(p.Random, random) || off(p.Uncertainty, math.Hypot(systematic, random)) || p.Expanded != 2*p.Uncertainty || r.Factor != 2 || off(*p.MeanU, p.Uncertainty/(n*48)) {
+			t.Errorf("%+v: uncertainty %g of %g and %g, want %g and %g", q, p.Uncertainty, p.Systematic, p.Random, systematic, random)
+		}
+		if len(p.Shares) != 3 || p.Shares[0].Part != "flow" || off(p.Shares[0].Fraction, 0.64) || p.Shares[1].Part != "heat capacity" || p.Shares[2].Part != "random" {
+			t.Errorf("%+v: shares %+v", q, p.Shares)
+		}
+		// 48 s of 1 kW a minute; the bridged heat is in no peak.
+		if d := p.Demand; q.By != "hour" && (d.Peak == nil || !near12(d.Peak.Duty, 800) || d.Peak.Coverage != 0.8 || d.Full != 0) {
+			t.Errorf("%+v: demand %+v", q, p.Demand)
 		}
 	}
 }

@@ -12,6 +12,7 @@ import (
 
 	"heatreeve/agent"
 	"heatreeve/agent/demo"
+	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/configs"
 	"heatreeve/store"
@@ -108,6 +109,9 @@ func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m sto
 	} else {
 		m.Taken = 60 * duty
 	}
+	heat := 60 * duty // the shares of flow and outlet are 0.8 and 0.6 of what lasts
+	m.Systematic[loads.PartFlow], m.Systematic[loads.PartOutlet] = 0.8*0.008*heat, -0.6*0.008*heat
+	m.Random = 0.005 * heat * 0.005 * heat
 	silent := k%1440 >= 500 && k%1440 < 505 || l.Name == "dryer-air" && k >= 1300 && k < 1900
 	return m, !silent
 }
