@@ -170,19 +170,10 @@
 // load by the day, added up from its 8,760 hours, takes less than 30 ms on a desk machine.
 //
 // The file does not grow beyond its bound, for pages that Trim frees are used again: filled
-// for ten weeks with what five need, it grows to 1.14 times MaxBytes. It shrinks only at
+// for ten weeks at MaxBytes, it grows to 1.14 of that. It shrinks only at
 // Open, when more than half of it is free. A copy made while commits go on would have to be
 // brought up to each of them, and would need the room of both files and wear the flash
 // by a whole file, for room that the bound has set aside for the history anyway.
-//
-// # What is damaged
-//
-// Each record has a checksum, and bbolt's pages are looked at by Open, which refuses a file
-// of which any is damaged. A record that turns out damaged later is told to its readers; a
-// commit that is to replace it does so, builds hours anew where their minutes are there, and
-// counts it, see [Store.Damaged]. What is left of a file that Open refuses is saved by
-// [Salvage]. Where that has lost the names, one of kind "lost" has the greatest number that
-// was met, so that none is given again.
 //
 // The list of free pages is in the file only from a Close to the first commit after
 // it, which spares the others a page. Where it is not, Open makes it from a walk over all
@@ -194,4 +185,13 @@
 // with built and trimmed at the least int64. The commits that follow build the hours
 // and seal the groups, a few each. Other versions are refused. Change any of the above, and the version must
 // change with it.
+//
+// # What is damaged
+//
+// Each record has a checksum, and bbolt's pages are looked at by Open, which refuses a file
+// of which any is damaged. A record that turns out damaged later is told to its readers; a
+// commit that is to replace it does so, builds hours anew where their minutes are there, and
+// counts it, see [Store.Damaged]. What is left of a file that Open refuses is saved by
+// [Salvage]. Where that has lost the names, one of kind "lost" has the greatest number that
+// was met, so that none is given again.
 package store
