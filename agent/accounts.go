@@ -19,6 +19,8 @@ const wholeMinute = 54 * time.Second
 type accounts struct {
 	cfg    loads.Config
 	rules  [32]byte
+	byLoad [][32]byte // see rulesOfLoad
+	kept   []bool     // loads that the restored state had accounts of
 	engine *loads.Engine
 	judges []*design.Judge
 	closed []loads.Minute
@@ -35,6 +37,9 @@ func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*acc
 		return nil, err
 	}
 	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), engine: engine}
+	for i := range cfg.Loads {
+		a.byLoad = append(a.byLoad, rulesOfLoad(&cfg, i))
+	}
 	for _, t := range targets {
 		a.judges = append(a.judges, design.NewJudge(t))
 	}
@@ -69,7 +74,8 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 // savedAccounts is the state of engine and judges; judges by the name of their
 // load.
 type savedAccounts struct {
-	Rules  [32]byte // that the accounts were kept by; see rulesOf
+	Rules  [32]byte            // that the accounts were kept by; see rulesOf
+	Loads  map[string][32]byte // those of each load; see rulesOfLoad
 	Engine []byte
 	Judges map[string]savedJudge
 
@@ -88,9 +94,10 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Rules: a.rules, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges))}
+	s := savedAccounts{Rules: a.rules, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges)), Loads: make(map[string][32]byte, len(a.judges))}
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
+		s.Loads[a.cfg.Loads[i].Name] = a.byLoad[i]
 	}
 	s.Site, s.Zone, s.Units = a.site, a.zone, a.units
 	var buf bytes.Buffer
@@ -100,19 +107,54 @@ func (a *accounts) save() ([]byte, error) {
 	return buf.Bytes(), nil
 }
 
-// restore takes up what save wrote, and reports whether it was by the same rules.
+// restore takes up what save wrote, and reports whether it was by the same rules. What a
+// load waited for that is accounted for otherwise now is missing.
 func (a *accounts) restore(state []byte) (same bool, err error) {
 	var s savedAccounts
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
 		return false, fmt.Errorf("restore state of %d bytes: %w", len(state), err)
 	}
+	a.kept = make([]bool, len(a.judges))
 	for i, j := range a.judges {
 		if was, ok := s.Judges[a.cfg.Loads[i].Name]; ok {
+			a.kept[i] = true
 			j.Restore(was.Last, was.Minutes)
 		}
 	}
 	a.keepUnits(s.Units)
-	return s.Rules == a.rules, a.engine.Restore(s.Engine)
+	if err := a.engine.Restore(s.Engine); err != nil {
+		return false, err
+	}
+	for i, now := range a.byLoad {
+		if was, ok := s.Loads[a.cfg.Loads[i].Name]; ok && was != now {
+			a.engine.Drop(i)
+		}
+	}
+	return s.Rules == a.rules, nil
+}
+
+// begun returns since when each load's time adds up: its undecided time and that in its
+// registers lead from there to where event time has come.
+func (a *accounts) begun() []int64 {
+	s := a.engine.Snapshot()
+	from := make([]int64, len(s.Loads))
+	for i, l := range s.Loads {
+		from[i] = s.Through - l.Undecided - l.Measured - l.Bridged - l.Missing
+	}
+	return from
+}
+
+// lapse adds to the missing time of the loads that were restored what their registers lack
+// since begun: it waited for what no one can decide any more.
+func (a *accounts) lapse(begun []int64) {
+	now := a.begun()
+	for i, l := range a.engine.Snapshot().Loads {
+		lost := now[i] - begun[i]
+		if a.kept[i] && lost > 0 && lost < int64(mostGap) {
+			l.Missing += lost
+			a.engine.SetRegisters(i, l.Totals)
+		}
+	}
 }
 
 // changedUnit stands for the unit of a tag whose readings were not always of one.

@@ -123,7 +123,8 @@ func unitsOf(s *site.Site) map[string]string {
 // load that the checkpoint does not know, because the site file left it out for a
 // while, goes on from its registers. Where the site file or the program has changed
 // since, the beats are not computed again by rules that were not theirs: the
-// registers stand as they were last committed, and the readings are only held.
+// registers stand as they were last committed, and the readings are only held. What waited
+// for a decision then is missing.
 func (l *ledger) resume() error {
 	known, err := l.totals()
 	if err != nil {
@@ -134,16 +135,23 @@ func (l *ledger) resume() error {
 		return err
 	}
 	l.take(known)
-	same := true // without a checkpoint, as a salvaged history may be, there is nothing but registers and the beats
-	if ok {
-		if same, err = l.accounts.restore(state); err != nil {
-			return err
-		}
+	if !ok { // as a salvaged history may be: there is nothing but registers and the beats
+		return l.replay(true)
 	}
-	if !same {
-		l.take(known)
+	same, err := l.accounts.restore(state)
+	if err != nil {
+		return err
 	}
-	return l.replay(same)
+	if same {
+		return l.replay(true)
+	}
+	begun := l.accounts.begun()
+	l.take(known)
+	if err := l.replay(false); err != nil {
+		return err
+	}
+	l.accounts.lapse(begun)
+	return nil
 }
 
 // take gives the loads the registers that the history holds for them.
@@ -198,10 +206,14 @@ func (l *ledger) totals() (map[int]store.Register, error) {
 	return known, nil
 }
 
+// tagIndex finds the tags by their number in the history, but for those whose readings mean
+// something else now.
 func (l *ledger) tagIndex() map[uint32]int {
 	index := make(map[uint32]int, len(l.tagIDs))
 	for i, id := range l.tagIDs {
-		index[id] = i
+		if !l.accounts.engine.Renewed(i) {
+			index[id] = i
+		}
 	}
 	return index
 }

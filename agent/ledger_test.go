@@ -181,6 +181,83 @@ func TestLedgerDoesNotReplayAnotherSite(t *testing.T) {
 	}
 }
 
+const counted = `
+site: Bench
+timezone: UTC
+barometer: 101.3 kPa
+broker: {url: "mqtt://127.0.0.1:1883"}
+timing: {bridge: 2 min}
+tags:
+  TI: {topic: a, unit: °C, value: /v, time: /ts, accuracy: 0.1 K, max_age: 20 s}
+  TO: {topic: b, unit: °C, value: /v, time: /ts, accuracy: 0.1 K, max_age: 20 s}
+  FQ: {topic: c, unit: kg, value: /v, time: /ts, accuracy: 1 % of reading, max_age: 10 min, counts: {}}
+loads:
+  main:
+    stream: {fluid: water, flow: FQ, inlet: TI, outlet: TO, pressure: 3 barg, gives: heat}
+`
+
+// count puts a beat a second through, with temperatures each ten seconds up to an instant
+// and a count each hundred.
+func count(l *ledger, from, until, warm int64) {
+	for s := from; s < until; s++ {
+		at := clock.UnixNano() + s*sec
+		var in []ingest.Reading
+		if s%10 == 0 && s < warm {
+			in = append(in, ingest.Reading{Tag: 0, At: at, Value: 350, Stamped: true}, ingest.Reading{Tag: 1, At: at, Value: 330, Stamped: true})
+		}
+		if s%100 == 0 {
+			in = append(in, ingest.Reading{Tag: 2, At: at, Value: float64(s), Stamped: true})
+		}
+		l.beat(in, at-5*sec)
+	}
+}
+
+// Time that waits for a count or a bridge when the site file changes is missing: none of it
+// is left out of the account, after a stop and after a kill, and nothing of what waited is
+// worked with a count in another unit. A load that has not changed waits on after a stop.
+func TestLedgerLeavesNoTimeOutWhenTheSiteChanges(t *testing.T) {
+	litres := strings.NewReplacer("unit: kg,", "unit: t,").Replace(counted)
+	for _, tt := range []struct {
+		name, after string
+		stop        bool
+		waits       int64 // s, at the start
+	}{
+		{"the unit of the count, after a stop", litres, true, 0},
+		{"the unit of the count, after a kill", litres, false, 0},
+		{"another load, after a stop", counted + strings.NewReplacer("FT", "FQ").Replace(annex), true, 74},
+		{"another load, after a kill", counted + strings.NewReplacer("FT", "FQ").Replace(annex), false, 0},
+	} {
+		path := filepath.Join(t.TempDir(), "h.db")
+		l, shut := open(t, parsed(t, counted), path, store.Options{})
+		count(l, 0, 150, 430)
+		if err := l.commit(clock, true); err != nil {
+			t.Fatal(err)
+		}
+		count(l, 150, 480, 430)
+		if err := l.commit(clock, tt.stop); err != nil {
+			t.Fatal(err)
+		}
+		before := l.accounts.engine.Snapshot()
+		shut()
+		if before.Loads[0].Undecided != 74*sec || before.Loads[0].Given == 0 {
+			t.Fatalf("%s: %+v wait when the site changes, want 74 s", tt.name, before.Loads[0])
+		}
+
+		l, shut = open(t, parsed(t, tt.after), path, store.Options{})
+		now := l.accounts.engine.Snapshot().Loads[0]
+		sum := func(l loads.LoadState) int64 { return l.Measured + l.Bridged + l.Missing + l.Undecided }
+		if sum(now) != sum(before.Loads[0]) || now.Undecided != tt.waits*sec || now.Given != before.Loads[0].Given {
+			t.Errorf("%s: %+v, undecided %d s, after %+v, want %d s to wait and nothing left out", tt.name, now.Totals, now.Undecided/sec, before.Loads[0].Totals, tt.waits)
+		}
+		count(l, 480, 720, 720)
+		then := l.accounts.engine.Snapshot().Loads[0]
+		if sum(then) != sum(before.Loads[0])+240*sec {
+			t.Errorf("%s: %d s are accounted for 240 s later, were %d", tt.name, sum(then)/sec, sum(before.Loads[0])/sec)
+		}
+		shut()
+	}
+}
+
 // A disk that takes nothing stops neither the accounts nor the agent: failures are
 // counted, what waits is bounded, and with the disk's return everything that the
 // accounts hold is written.

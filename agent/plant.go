@@ -1,6 +1,8 @@
 package agent
 
 import (
+	"fmt"
+
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
@@ -25,11 +27,22 @@ func tagOf(t *site.Tag) loads.Tag {
 	tag := loads.Tag{
 		Name: t.Name, MaxAge: int64(t.MaxAge), Accuracy: loads.Accuracy(t.Accuracy),
 		Resolution: t.Resolution, Deadband: t.Deadband, OnChange: t.OnChange, Alive: t.Alive,
+		Meaning: meaning(t),
 	}
 	if c := t.Counter; c != nil {
 		tag.Counter = &loads.Counter{Modulus: c.Modulus, Largest: c.Largest}
 	}
 	return tag
+}
+
+// meaning tells what the tag's numbers are of: in which unit, and whether they count. Gauge
+// pressures are the same whatever the barometer that they stand on.
+func meaning(t *site.Tag) string {
+	kind := "reading"
+	if t.Counter != nil {
+		kind = "count"
+	}
+	return fmt.Sprintf("%s in %s, %g x + %g, gauge %t", kind, t.Unit.Dimension.SI(), t.Scale, t.Unit.Offset, t.Unit.Gauge)
 }
 
 func loadOf(l *site.HeatLoad) loads.Load {

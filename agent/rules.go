@@ -3,6 +3,7 @@ package agent
 import (
 	"crypto/sha256"
 	"encoding/binary"
+	"fmt"
 	"hash"
 	"math"
 
@@ -23,18 +24,83 @@ func rulesOf(site [32]byte, cfg *loads.Config) [32]byte {
 	h.Write(site[:])
 	write(h, bookkeeping)
 	for i := range cfg.Loads {
-		f := cfg.Loads[i].Stream.Fluid
-		if v := cfg.Loads[i].Vessel; v != nil {
-			f = v.Fluid
-		}
-		probe(h, f)
-		if air, ok := f.(thermo.Humid); ok {
-			if carrying, err := air.Carrying(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: 0.5}, 293.15, 100e3); err == nil {
-				probe(h, carrying)
-			}
-		}
+		probeLoad(h, &cfg.Loads[i])
 	}
 	return [32]byte(h.Sum(nil))
+}
+
+// rulesOfLoad is a digest of what a single load is booked by. Where only other parts of the
+// site file have changed, it goes on with what it waits for.
+func rulesOfLoad(cfg *loads.Config, load int) [32]byte {
+	l := cfg.Loads[load]
+	h := sha256.New()
+	write(h, bookkeeping)
+	probeLoad(h, &l)
+	fmt.Fprintln(h, cfg.Grid, cfg.Bridge)
+	var vessel loads.Vessel
+	if l.Vessel != nil {
+		vessel = *l.Vessel
+		l.Vessel, vessel.Fluid = &vessel, nil
+	}
+	named(h, cfg.Tags, sourcesOf(&l))
+	l.Vessel = nil
+	fmt.Fprintf(h, "%+v\n", vessel)
+	l.Stream.Fluid = nil
+	fmt.Fprintf(h, "%+v\n", l)
+	return [32]byte(h.Sum(nil))
+}
+
+// sourcesOf returns all that the load reads.
+func sourcesOf(l *loads.Load) (all []*loads.Source) {
+	if l.HasWitness {
+		all = append(all, &l.Witness)
+	}
+	if v := l.Vessel; v != nil {
+		return append(all, &v.Temperature, &v.Pressure, &v.Content)
+	}
+	s := &l.Stream
+	all = append(all, &s.Flow, &s.Inlet, &s.Outlet, &s.Pressure, &s.OutletPressure)
+	for _, more := range [...]struct {
+		has bool
+		src *loads.Source
+	}{{s.HasPump, &s.Pump}, {s.HasCoil, &s.Coil}, {s.HumidityKind != 0, &s.Humidity}} {
+		if more.has {
+			all = append(all, more.src)
+		}
+	}
+	return all
+}
+
+// named writes the tags that sources read, and takes their indexes out of the sources, since
+// these tell only where in the site file a tag stands.
+func named(h hash.Hash, tags []loads.Tag, sources []*loads.Source) {
+	for _, src := range sources {
+		for i := src.Tag; i >= 0; {
+			t := tags[i]
+			if i = -1; t.OnChange {
+				i = t.Alive
+			}
+			if t.Counter != nil {
+				fmt.Fprintf(h, "%+v ", *t.Counter)
+			}
+			t.Alive, t.Counter = 0, nil
+			fmt.Fprintf(h, "%+v\n", t)
+		}
+		src.Tag = min(src.Tag, 0)
+	}
+}
+
+func probeLoad(h hash.Hash, l *loads.Load) {
+	f := l.Stream.Fluid
+	if l.Vessel != nil {
+		f = l.Vessel.Fluid
+	}
+	probe(h, f)
+	if air, ok := f.(thermo.Humid); ok {
+		if carrying, err := air.Carrying(thermo.Moisture{Kind: thermo.RelativeHumidity, Value: 0.5}, 293.15, 100e3); err == nil {
+			probe(h, carrying)
+		}
+	}
 }
 
 // probe writes the balances of states that most plants are near.

@@ -51,3 +51,46 @@ func TestRules(t *testing.T) {
 		}
 	}
 }
+
+// The rules of a load are its own: where its tags stand, and what other loads do, is none
+// of them.
+func TestRulesOfLoad(t *testing.T) {
+	of := func(change func(c *loads.Config)) [32]byte {
+		tank := loads.Load{Vessel: &loads.Vessel{Fluid: water.Liquid(), Temperature: loads.FromTag(2), Content: loads.Constant(5)}}
+		cfg := loads.Config{Grid: sec, Tags: []loads.Tag{
+			{Name: "FQ", OnChange: true, Alive: 1, Counter: &loads.Counter{Modulus: 10}}, {Name: "LIFE"}, {Name: "TI"}, {Name: "other"},
+		}, Loads: []loads.Load{{Stream: loads.Stream{Fluid: water.Liquid(), Flow: loads.FromTag(0), Inlet: loads.FromTag(2)}}, tank}}
+		change(&cfg)
+		return rulesOfLoad(&cfg, 0)
+	}
+	same := of(func(*loads.Config) {})
+	for name, change := range map[string]func(c *loads.Config){
+		"another tag's bound": func(c *loads.Config) { c.Tags[3].MaxAge = 7 },
+		"the other load":      func(c *loads.Config) { c.Loads[1].Vessel.Shell = 7 },
+		"the places of tags": func(c *loads.Config) {
+			c.Tags = append([]loads.Tag{{Name: "new"}}, c.Tags...)
+			c.Tags[1].Alive, c.Loads[0].Stream.Flow.Tag, c.Loads[0].Stream.Inlet.Tag = 2, 1, 3
+			c.Loads[0].Stream.Outlet.Tag, c.Loads[0].Stream.Pressure.Tag, c.Loads[0].Stream.OutletPressure.Tag = 1, 1, 1
+		},
+	} {
+		if of(change) != same {
+			t.Errorf("%s changes the rules", name)
+		}
+	}
+	for name, change := range map[string]func(c *loads.Config){
+		"the bridge":        func(c *loads.Config) { c.Bridge = 7 },
+		"the fluid":         func(c *loads.Config) { c.Loads[0].Stream.Fluid = revised{water.Liquid()} },
+		"the way it serves": func(c *loads.Config) { c.Loads[0].Stream.Gives = true },
+		"a constant":        func(c *loads.Config) { c.Loads[0].Stream.Outlet = loads.Constant(7) },
+		"what is counted":   func(c *loads.Config) { c.Tags[0].Meaning = "litres" },
+		"a roll-over":       func(c *loads.Config) { c.Tags[0].Counter.Modulus = 7 },
+		"a sign of life":    func(c *loads.Config) { c.Tags[1].MaxAge = 7 },
+		"a witness":         func(c *loads.Config) { c.Loads[0].HasWitness = true },
+		"another tag":       func(c *loads.Config) { c.Loads[0].Stream.Inlet.Tag = 3 },
+		"the kind of load":  func(c *loads.Config) { c.Loads[0].Vessel = c.Loads[1].Vessel },
+	} {
+		if of(change) == same {
+			t.Errorf("%s does not change the rules", name)
+		}
+	}
+}

@@ -25,6 +25,7 @@ type Engine struct {
 	follows   [][]follow // trends that each tag's readings go into
 	holds     []int      // loads with a hold
 	counters  []bounded
+	renewed   []bool // tags whose numbers meant something else in the restored state
 }
 
 // Tally counts what became of a tag's readings.
@@ -48,6 +49,7 @@ func New(cfg Config) (*Engine, error) {
 		tally:   make([]Tally, len(cfg.Tags)),
 		users:   make([][]int, len(cfg.Tags)),
 		follows: make([][]follow, len(cfg.Tags)),
+		renewed: make([]bool, len(cfg.Tags)),
 	}
 	for i := range cfg.Tags {
 		if cfg.Tags[i].OnChange {

@@ -88,6 +88,10 @@ type Tag struct {
 	Alive    int
 	// Counter is set where the tag is a register that only rises.
 	Counter *Counter
+	// Meaning tells what the tag's numbers are of. What was read under another is not taken
+	// up by [Engine.Restore]: the difference of two counts of which one was of something
+	// else, or in another unit, is no amount.
+	Meaning string
 }
 
 // Counter is a register of volume or mass (for a flow) or of energy (for a witness)

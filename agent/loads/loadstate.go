@@ -48,10 +48,19 @@ func newLoad(cfg *Config, load int) loadState {
 	return l
 }
 
-// resume takes up the accounts that were saved on the same grid.
-func (l *loadState) resume(was loadState) {
+// resume takes up the accounts that were saved in the state of, to go on at next.
+func (l *loadState) resume(was loadState, of *saved, next int64) {
 	was.terms = l.terms
-	if was.Counted == nil || l.Counted == nil {
+	was.terms.grid = of.Grid
+	waited := next - was.decided(of.Next)
+	if of.Grid != l.terms.grid {
+		l.Registers, l.Minute = was.Registers, was.Minute
+		l.Registers.Missing += waited
+		return
+	}
+	if (was.Counted == nil) != (l.Counted == nil) {
+		was.Registers.Missing += waited
+		was.drop()
 		was.Counted = l.Counted
 	}
 	if was.Witness == nil || l.Witness == nil {
@@ -68,6 +77,11 @@ func (l *loadState) resume(was loadState) {
 // forget drops what is not in the registers yet, because it was booked elsewhere.
 func (l *loadState) forget() {
 	l.Minute.Begun = false
+	l.drop()
+}
+
+// drop gives up all that waits for what comes next.
+func (l *loadState) drop() {
 	l.Gap = gap{}
 	if l.Counted != nil {
 		l.Counted = new(counted)

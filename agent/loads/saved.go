@@ -29,6 +29,7 @@ func (e *Engine) Save() ([]byte, error) {
 		Loads: make(map[string]loadState, len(e.loads)),
 	}
 	for i, t := range e.tags {
+		t.Meaning = e.cfg.Tags[i].Meaning
 		s.Tags[e.cfg.Tags[i].Name] = t
 	}
 	for i, l := range e.loads {
@@ -42,8 +43,10 @@ func (e *Engine) Save() ([]byte, error) {
 }
 
 // Restore takes up the state that Save wrote. Tags and loads that the state does
-// not know begin afresh; those that the plant no longer has are left out. The
-// registers survive a change of grid, the rolling windows do not.
+// not know begin afresh, and so do tags whose numbers mean something else now; those
+// that the plant no longer has are left out. The registers and the open minute survive a
+// change of grid, the rolling windows do not. Time that was not decided and cannot be any
+// more, for another grid or because the flow is counted now or is no longer, is missing.
 func (e *Engine) Restore(state []byte) error {
 	var s saved
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
@@ -53,23 +56,45 @@ func (e *Engine) Restore(state []byte) error {
 		return fmt.Errorf("restore engine state: version %d is not known, this program writes %d", s.Version, savedVersion)
 	}
 	e.next, e.through = s.Next, s.Through
+	if s.Grid != e.cfg.Grid {
+		e.next = ceil(e.next, e.cfg.Grid)
+	}
+	renewed := make(map[string]bool)
 	for i := range e.tags {
-		if t, ok := s.Tags[e.cfg.Tags[i].Name]; ok {
+		tag := &e.cfg.Tags[i]
+		t, ok := s.Tags[tag.Name]
+		switch {
+		case ok && t.of(tag):
 			e.tags[i] = t
+		case ok:
+			e.renewed[i], renewed[tag.Name] = true, true
 		}
 	}
 	for i := range e.loads {
 		l, ok := s.Loads[e.cfg.Loads[i].Name]
-		if ok && s.Grid == e.cfg.Grid {
-			e.loads[i].resume(l)
-		} else if ok {
-			e.loads[i].Registers = l.Registers
+		if !ok {
+			continue
 		}
-	}
-	if s.Grid != e.cfg.Grid {
-		e.next = ceil(e.next, e.cfg.Grid)
+		for k := range l.Trends {
+			if renewed[l.Trends[k].Tag] {
+				l.Trends[k] = trend{}
+			}
+		}
+		e.loads[i].resume(l, &s, e.next)
 	}
 	return nil
+}
+
+// Renewed reports whether the tag's numbers mean something else than in the state that was
+// restored, so that readings from before are not to be put through again.
+func (e *Engine) Renewed(tag int) bool { return e.renewed[tag] }
+
+// Drop gives up what the load waits for, after a change of what it is accounted by: its
+// undecided time is missing.
+func (e *Engine) Drop(load int) {
+	l := &e.loads[load]
+	l.Registers.Missing += e.next - l.decided(e.next)
+	l.drop()
 }
 
 // SetRegisters gives load the totals that an earlier run left, where its state is

@@ -51,6 +51,76 @@ func TestRestoreWithAnotherGrid(t *testing.T) {
 	near(t, "given", next.Snapshot().Loads[0].Given, 160e3*(33+10), 1e-6) // 40 to 50 s
 }
 
+// resumed returns an engine of cfg that goes on from the state of e.
+func resumed(t *testing.T, e *Engine, cfg Config) *Engine {
+	t.Helper()
+	state, err := e.Save()
+	if err != nil {
+		t.Fatal(err)
+	}
+	next := engine(t, cfg)
+	if err := next.Restore(state); err != nil {
+		t.Fatal(err)
+	}
+	return next
+}
+
+// Time that waited for a bridge, or for a count, on the grid before is missing, and so is
+// what lies before the first point of the new one; the open minute is told in full.
+func TestUndecidedTimeIsMissingOnAnotherGrid(t *testing.T) {
+	cfg := bridging()
+	e := engine(t, cfg)
+	e.Advance(Beat{at(0, 1, 350, 330), through(33)}, nil)
+	accounted(t, e, 10, 0, 0, 23)
+	cfg.Grid = 20 * second
+	next := resumed(t, e, cfg)
+	accounted(t, next, 10, 0, 30, 0)
+	closed := next.Advance(Beat{at(40, 1, 350, 330), through(60)}, nil)
+	l := accounted(t, next, 30, 0, 30, 0)
+	if len(closed) != 1 || closed[0].Measured != 30*second || closed[0].Given != l.Given {
+		t.Errorf("minutes %+v, want one with all of %g J", closed, l.Given)
+	}
+}
+
+// A flow that is counted from now on, or no more, leaves nothing undecided behind: heat
+// that waited was that of a unit of flow.
+func TestUndecidedTimeIsMissingForAnotherKindOfFlow(t *testing.T) {
+	rate, counted := bridging(), countingPlant()
+	counted.Bridge = rate.Bridge
+	e := engine(t, rate)
+	e.Advance(Beat{at(0, 1, 350, 330), through(33)}, nil)
+	accounted(t, resumed(t, e, counted), 10, 0, 23, 0)
+
+	e = engine(t, counted)
+	e.Advance(Beat{append(counts(0, 5), temps(0, 350, 330)...), through(33)}, nil)
+	accounted(t, e, 0, 0, 0, 33)
+	accounted(t, resumed(t, e, rate), 0, 0, 33, 0)
+}
+
+// A reading is not taken for one of something else: here a flow of 3 kg/s for a register
+// at 3 kg, and a register in litres for one in cubic metres.
+func TestRestoreOfATagThatMeansSomethingElse(t *testing.T) {
+	before := plant(liquid)
+	inLitres, inTonnes := countingPlant(), countingPlant()
+	inLitres.Tags[flow].Meaning, inTonnes.Tags[flow].Meaning = "0.001", "1"
+	for _, tt := range []struct {
+		name          string
+		before, after Config
+	}{{"a flow before", before, countingPlant()}, {"another unit before", inLitres, inTonnes}} {
+		tt.after.Tags[flow].Counter, tt.before.Tags[flow].Name = &Counter{}, "QT"
+		e := engine(t, tt.before)
+		e.Advance(Beat{append(counts(0, 3), temps(0, 350, 330)...), through(2)}, nil)
+		next := resumed(t, e, tt.after)
+		if !next.Renewed(flow) || next.Renewed(inlet) {
+			t.Errorf("%s: renewed %v and %v, want the flow alone", tt.name, next.Renewed(flow), next.Renewed(inlet))
+		}
+		taken := next.Snapshot().Loads[0].Given
+		next.Advance(Beat{append(counts(10, 12345), temps(10, 350, 330)...), through(11)}, nil)
+		next.Advance(Beat{counts(20, 12355), through(21)}, nil)
+		near(t, tt.name+": given", next.Snapshot().Loads[0].Given-taken, 10*80e3, 1e-6)
+	}
+}
+
 // The state was written by the release before bridges and counters, after 10 minutes and
 // 34 s at 160 kW, with a flow of 3 kg/s waiting at 639 s.
 func TestRestoreOfVersion1(t *testing.T) {

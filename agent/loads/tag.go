@@ -37,9 +37,18 @@ type tagState struct {
 	// reading from before it does not hold. 0 for none.
 	Lapse    int64
 	Count    count    // of a counter
+	Meaning  string   // of the tag when it was saved; empty in states from before it was told
 	standing standing // of an on-change tag at the grid point last computed
 	recent   []int64  // ring of stamps taken
 	next     int      // where the ring is written next
+}
+
+// of reports whether the state is one of readings that mean what those of the tag do.
+func (t *tagState) of(tag *Tag) bool {
+	if t.Meaning == "" {
+		return tag.Counter == nil || !t.Held.Has || t.Count.At != 0
+	}
+	return t.Meaning == tag.Meaning
 }
 
 // take files one reading. Booked is the newest grid point already computed. Of the
