@@ -6,6 +6,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"net"
 	"net/http"
 	"net/http/httptest"
@@ -147,7 +148,7 @@ func TestReportsThatNobodyTakes(t *testing.T) {
 	}
 }
 
-// A month by the hour from a year of history.
+// A month by the hour from a year of history; ms-least is the quickest of the reports.
 func BenchmarkReport(b *testing.B) {
 	dir := b.TempDir()
 	db, err := store.Open(filepath.Join(dir, HistoryFile), store.Options{})
@@ -183,7 +184,9 @@ func BenchmarkReport(b *testing.B) {
 		{"year-by-month", Query{From: "2026-10-24", By: "month", Loads: []string{"a"}}},
 	} {
 		b.Run(q.name, func(b *testing.B) {
+			least := time.Duration(math.MaxInt64)
 			for b.Loop() {
+				begun := time.Now()
 				r, err := h.report(b.Context(), q.Query)
 				if err != nil {
 					b.Fatal(err)
@@ -191,7 +194,9 @@ func BenchmarkReport(b *testing.B) {
 				if err := json.NewEncoder(io.Discard).Encode(r); err != nil {
 					b.Fatal(err)
 				}
+				least = min(least, time.Since(begun))
 			}
+			b.ReportMetric(float64(least.Microseconds())/1e3, "ms-least")
 		})
 	}
 }
