@@ -7,6 +7,7 @@ import (
 	"io/fs"
 	"math"
 	"os"
+	"slices"
 	"syscall"
 
 	bolt "go.etcd.io/bbolt"
@@ -112,9 +113,10 @@ type salvage struct {
 	db      *bolt.DB
 	report  *Report
 	trees   []*salvagedTree        // of the newest state and the one before
-	groups  [3]map[string][][]byte // by name: of the newest state, the one before, and of neither
+	groups  [5]map[string][][]byte // by name: of the newest state, the one before, and of neither, see stray
 	unsure  bool                   // groups of the newest state may be missing without a trace
 	damaged map[string]bool        // keys of minutes and hours that were met damaged; in front m or h
+	names   []byte                 // of no known bucket
 	batch   []keyed
 	bytes   int
 }
@@ -211,15 +213,45 @@ func (z *salvage) strays() error {
 		all, _ := elements(b) // keys of a branch have no value, and are nothing
 		for _, e := range all {
 			if e.bucket {
-				z.group(len(z.groups)-1, e)
+				z.group(z.rank(e), e)
 				continue
 			}
+			z.strayNames(e)
 			if err := z.stray(e); err != nil {
 				return err
 			}
 		}
 	}
 	return nil
+}
+
+// rank sorts stray groups and blocks: whole blocks come before whole groups, which may have
+// been sealed since, and those before others, whose pages may hold something else by now.
+func (z *salvage) rank(e element) int {
+	s, err := parseName(e.key)
+	if err != nil {
+		return 4
+	}
+	b := z.raw.newWalk().records(e.value)
+	switch {
+	case keptOfBlock(e.key, b) == int64(s.readings):
+		return 2
+	case b != nil && keptOfGroup(s, b) == int64(s.readings):
+		return 3
+	}
+	return 4
+}
+
+// strayNames takes the longest list of names that is met: names only come.
+func (z *salvage) strayNames(e element) {
+	all, err := parseNames(e.value)
+	if err != nil || string(e.key) != string(keyNames) || len(all) == 0 ||
+		slices.ContainsFunc(all, func(n named) bool { return n.kind == "" || n.name == "" }) { // registers have the same key
+		return
+	}
+	if len(e.value) > len(z.names) {
+		z.names = append([]byte{}, e.value...)
+	}
 }
 
 // stray takes a minute or an hour whose bucket is not known. One that might be either is

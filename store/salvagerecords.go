@@ -316,6 +316,9 @@ func (r *refit) openGroup(trees []*salvagedTree) error {
 // rest writes names, registers, and the state if the records that follow it are whole.
 func (z *salvage) rest(r *refit, state []byte) error {
 	names := z.value("names", keyNames, func(v []byte) bool { _, err := parseNames(v); return err == nil })
+	if names == nil {
+		names = z.names
+	}
 	z.report.Names = names != nil
 	if names == nil {
 		names = z.reserved(r)
