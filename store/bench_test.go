@@ -451,7 +451,7 @@ func BenchmarkSalvage(b *testing.B) {
 	for b.Loop() {
 		to := filepath.Join(b.TempDir(), "to.db")
 		r, err := Salvage(path, to)
-		if err != nil || r.Minutes.Count != 365*24*60*10 {
+		if err != nil || r.Minutes.Count < 365*24*60*9 || r.Readings.Count == 0 { // the bound may have taken the first days
 			b.Fatalf("%+v, %v", r, err)
 		}
 		b.ReportMetric(float64(len(whole)), "B/file")
