@@ -33,7 +33,16 @@ func (w *witness) hear(c *count) {
 
 // cuts reports whether a span ends at g, so that what lies before and after it must be
 // told apart.
-func (w *witness) cuts(g int64) bool { return w != nil && w.Last == g }
+func (w *witness) cuts(g int64) bool {
+	if w == nil {
+		return false
+	}
+	i := len(w.Marks) - 1
+	for i >= 0 && w.Marks[i].At > g {
+		i--
+	}
+	return i >= 0 && w.Marks[i].At == g
+}
 
 // serve adds heat that the load served.
 func (w *witness) serve(heat float64) {

@@ -111,6 +111,36 @@ func TestWitnessOfACountedFlow(t *testing.T) {
 	}
 }
 
+// A gap that begins where a span ends spoils only the next, also where the gap, and all
+// before it, is decided on after further spans have ended: 1 kg/s, bridged from 70 to 130 s.
+func TestWitnessAcrossABridgeOfACountedFlow(t *testing.T) {
+	cfg := countingPlant()
+	cfg.Bridge = 2 * minute
+	cfg.Tags[inlet].MaxAge, cfg.Tags[outlet].MaxAge = 10*second, 10*second
+	cfg.Tags = append(cfg.Tags, Tag{Name: "ET", MaxAge: minute, Counter: &Counter{}})
+	cfg.Loads[0].Witness, cfg.Loads[0].HasWitness = FromTag(meter), true
+	e := engine(t, cfg)
+	var closed []Minute
+	for s := range 302 {
+		var rr []Reading
+		if s%10 == 0 && (s <= 60 || s >= 130) {
+			rr = temps(float64(s), 350, 330)
+		}
+		if s%200 == 0 {
+			rr = append(rr, counts(float64(s), float64(s))...)
+		}
+		switch s {
+		case 0, 70, 125, 180:
+			rr = append(rr, energy(float64(s), float64(s)*81e3))
+		}
+		closed = e.Advance(Beat{rr, through(float64(s))}, closed)
+	}
+	w, c := compared(closed)
+	if !same(w, []float64{0, 70 * 0.081, 0}) || !same(c, []float64{0, 70 * 0.08, 0}) {
+		t.Errorf("witness %v, compared %v", w, c)
+	}
+}
+
 // A register that reports by exception tells by its silence, each 25 s, that it stands
 // still, also while nothing else is heard: however event time comes, spans end at 75, 125
 // and 200 s, and after the reading at 208 s at 258 and 308 s.
