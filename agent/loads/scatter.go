@@ -25,9 +25,9 @@ type scatter struct {
 }
 
 // steadyAfter is the number of differences after which a mean forgets: each new one then
-// weighs 1/steadyAfter. Of white noise the standard uncertainty is found to some 17 %, the
-// half of what 10 readings would leave open (JCGM 100:2008, table E.1), and a step of the
-// quantity is forgotten by half every 22 readings.
+// weighs 1/steadyAfter. Of white noise the standard uncertainty is found to some 15 %, as
+// well as from 20 readings (JCGM 100:2008, table E.1, has 16 % for these), and a step of
+// the quantity is forgotten by half every 22 readings.
 const steadyAfter = 16
 
 // observe takes in the reading after the one that was held, unless that had run out of
