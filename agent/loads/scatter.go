@@ -1,5 +1,7 @@
 package loads
 
+import "math"
+
 // scatter is what the readings of a tag tell of how far one of them may be off by what
 // changes from reading to reading: noise of the signal, and the way of the quantity while
 // a reading is held. Sizes are exponentially weighted means over successive readings, of
@@ -31,12 +33,16 @@ type scatter struct {
 const steadyAfter = 16
 
 // observe takes in the reading after the one that was held, unless that had run out of
-// age: what came after it is another story.
+// age: what came after it is another story. A difference whose square is beyond all numbers
+// is none, since no mean would come back from it.
 func (s *scatter) observe(before held, next sample, maxAge int64) {
 	if !before.Has || next.At-before.At >= maxAge {
 		return
 	}
 	d, step := next.Value-before.Value, float64(next.At-before.At)*1e-9
+	if !(d*d*step*step <= math.MaxFloat64 && d*d <= math.MaxFloat64) {
+		return
+	}
 	s.Seen = min(s.Seen+1, steadyAfter)
 	w := 1 / float64(s.Seen)
 	s.Square += w * (d*d - s.Square)

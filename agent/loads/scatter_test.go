@@ -112,3 +112,20 @@ func figureOf(t *testing.T, readings []Reading) Figure {
 	e.Advance(Beat{readings, through(3)}, nil)
 	return e.Snapshot().Loads[0].Figure
 }
+
+// What a transmitter sends without a signal leaves no mean that never comes back.
+func TestScatterOfAbsurdReadings(t *testing.T) {
+	for _, bad := range []float64{math.MaxFloat64, -math.MaxFloat64, math.Inf(1), math.NaN()} {
+		e := engine(t, plant(liquid))
+		for s := 0.0; s < 40; s++ {
+			x := 350 + 0.1*math.Sin(s)
+			if s == 20 {
+				x = bad
+			}
+			e.Advance(Beat{at(s, 2, x, 330), through(s + 1)}, nil)
+		}
+		if f := e.Snapshot().Loads[0].Figure; !f.Measured() || !(f.Random > 0 && f.Random < 2*4000*0.1) {
+			t.Errorf("after %g: random uncertainty of %g W, want that of 0.1 K and less", bad, f.Random)
+		}
+	}
+}
