@@ -8,6 +8,9 @@ import (
 
 const day = 24 * time.Hour
 
+// waiting is for how many steps of the grid the readings of a tag wait for event time.
+const waiting = 4096
+
 // timing reads the optional block; each key has its default.
 func (r *reader) timing(o object) {
 	t := &r.site.Timing
@@ -24,6 +27,8 @@ func (r *reader) timing(o object) {
 	b.setDuration("bridge", &t.Bridge, 0, 2*time.Hour, "0 s to 2 h")
 	if v, ok := b.get("grid"); ok && time.Minute%t.Grid != 0 {
 		v.fault("a minute is no whole number of steps of %v; allowed are steps such as 1 s, 2 s, 5 s, 10 s", t.Grid)
+	} else if most := waiting * t.Grid; t.Lateness+t.Ahead > most {
+		block.fault("lateness of %v and ahead of %v are more than readings wait for at a grid of %v; allowed are %v together", t.Lateness, t.Ahead, t.Grid, most)
 	}
 }
 
