@@ -26,7 +26,7 @@ type rawFile struct {
 	size     int64
 	pageSize int64
 	metas    []rawMeta // those that are sound, newest first
-	reached  []bool    // pages that any walk came to
+	reached  []bool    // pages that a walk with marks came to
 }
 
 type rawMeta struct{ root, id uint64 }
@@ -127,8 +127,9 @@ func elements(b []byte) (all []element, bad int) {
 // pageWalk is one way through the pages.
 type pageWalk struct {
 	*rawFile
-	seen map[uint64]bool
-	bad  int64 // pages and elements that cannot be read
+	seen  map[uint64]bool
+	marks bool  // what it reaches is reached for good
+	bad   int64 // pages and elements that cannot be read
 }
 
 func (r *rawFile) newWalk() *pageWalk { return &pageWalk{rawFile: r, seen: map[uint64]bool{}} }
@@ -139,7 +140,8 @@ func (w *pageWalk) tree(id uint64, depth int, leaf func(element)) {
 		w.bad++
 		return
 	}
-	w.seen[id], w.reached[id] = true, true
+	w.seen[id] = true
+	w.reached[id] = w.reached[id] || w.marks
 	b := w.run(id)
 	all, bad := elements(b)
 	w.bad += int64(bad)

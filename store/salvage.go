@@ -156,6 +156,7 @@ func (z *salvage) all() error {
 // tree takes what the tree of one state leads to.
 func (z *salvage) tree(root uint64) (err error) {
 	w := z.raw.newWalk()
+	w.marks = true
 	t := &salvagedTree{values: map[string][]byte{}}
 	z.trees = append(z.trees, t)
 	ofRecords := int64(0)
