@@ -194,16 +194,24 @@ func (a *Agent) put(r *rhythm) {
 	for rest := r.received; ; {
 		piece := rest[:min(len(rest), pieceReadings)]
 		rest = rest[len(piece):]
-		a.note(r, piece, now)
-		r.books.beat(r.readings, r.pace.advance(now, r.stats.Connected, heldBack))
+		r.account(piece, now, heldBack)
 		if len(rest) == 0 {
 			return
 		}
 	}
 }
 
+// account puts a piece through the accounts, once they have room for it.
+func (r *rhythm) account(piece []ingest.Received, now time.Time, heldBack bool) {
+	if at := r.books.accounts.engine.Relief(len(piece)); at > r.pace.through {
+		r.books.beat(nil, r.pace.press(at, now))
+	}
+	r.note(piece, now)
+	r.books.beat(r.readings, r.pace.advance(now, r.stats.Connected, heldBack))
+}
+
 // note tells the pace of what came, and keeps what is to be acknowledged.
-func (a *Agent) note(r *rhythm, piece []ingest.Received, now time.Time) {
+func (r *rhythm) note(piece []ingest.Received, now time.Time) {
 	r.readings = r.readings[:0]
 	for _, x := range piece {
 		r.readings = append(r.readings, x.Reading)

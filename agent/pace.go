@@ -30,7 +30,8 @@ const (
 // clocks are not late for ever after a silence.
 //
 // What a broker kept comes tag by tag as it likes, so for a while after the session
-// has opened the tag that is furthest behind leads.
+// has opened the tag that is furthest behind leads, as long as the readings of the others
+// have room to wait.
 //
 // Where the site has stamped tags, only stamped readings lead that came in the order
 // in which the broker keeps messages: a bare number, a message without delivery
@@ -87,6 +88,13 @@ func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
 		to = max(to, now.Add(-firstReach).UnixNano())
 	}
 	p.through = max(p.through, to-int64(p.lateness))
+	return p.through
+}
+
+// press moves event time on to at, but not ahead of the clock: no more readings can wait for
+// what has not come yet. It returns the instant up to which event time has come.
+func (p *pace) press(at int64, now time.Time) int64 {
+	p.through = max(p.through, min(at, now.UnixNano()))
 	return p.through
 }
 

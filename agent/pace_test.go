@@ -1,8 +1,15 @@
 package agent
 
 import (
+	"path/filepath"
+	"slices"
+	"strings"
 	"testing"
 	"time"
+
+	"heatreeve/agent/loads"
+	"heatreeve/ingest"
+	"heatreeve/store"
 )
 
 const sec = int64(time.Second)
@@ -215,5 +222,40 @@ func TestDeadTagHoldsBackForAWhileOnly(t *testing.T) {
 	}
 	if p.through != 1015*sec {
 		t.Errorf("through %d s, want 1015", p.through/sec)
+	}
+}
+
+// What a broker kept for half a day comes within seconds, while a tag that has spoken once holds
+// event time back: the others' readings are booked rather than refused for want of room.
+func TestLongBacklogIsBooked(t *testing.T) {
+	const hours = 12
+	s := parsed(t, strings.Replace(benchSite, "tags:\n", "tags:\n  QT: {topic: q, unit: °C, value: /v, time: /ts, accuracy: IEC 60751 A}\n", 1))
+	l, shut := open(t, s, filepath.Join(t.TempDir(), "history.db"), store.Options{})
+	defer shut()
+	now := clock.Add(hours * time.Hour)
+	r := &rhythm{books: l, pace: newPace(len(s.Tags), s.Timing.Lateness, s.Timing.Commit, true)}
+	r.stats.Connected = true
+	r.pace.advance(now, true, false)
+	values := map[string]float64{"TI": 353.15, "TO": 333.15, "FT": 2, "QT": 293.15}
+	var all []ingest.Received
+	for at := clock; at.Before(now); at = at.Add(5 * time.Second) {
+		for i, tag := range s.Tags {
+			if tag.Name != "QT" || at.Equal(clock) {
+				all = append(all, ingest.Received{Reading: ingest.Reading{Tag: i, At: at.UnixNano(), Value: values[tag.Name], Stamped: true, InOrder: true}})
+			}
+		}
+	}
+	for piece := range slices.Chunk(all, pieceReadings) {
+		r.account(piece, now, false)
+	}
+	for _, tag := range l.accounts.engine.Snapshot().Tags {
+		if tag.Tally != (loads.Tally{}) {
+			t.Errorf("tally of a tag: %+v", tag.Tally)
+		}
+	}
+	r.account(nil, now.Add(r.pace.quiet), false)
+	got := l.accounts.engine.Snapshot().Loads[0].Totals
+	if want := hours*time.Hour - 10*time.Second; got.Measured < int64(want) || got.Missing > int64(time.Second) {
+		t.Errorf("measured %v, missing %v of %v", time.Duration(got.Measured), time.Duration(got.Missing), hours*time.Hour)
 	}
 }

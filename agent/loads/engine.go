@@ -109,6 +109,19 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 	return closed
 }
 
+// Relief returns the instant up to which event time has to come so that each tag has
+// room for so many more readings, or 0 where all have it.
+func (e *Engine) Relief(readings int) int64 {
+	at := int64(0)
+	for i := range e.tags {
+		p := e.tags[i].Pending
+		if over := len(p) + readings - maxPending; over > 0 && len(p) > 0 {
+			at = max(at, ceil(p[min(over, len(p))-1].At, e.cfg.Grid)+e.cfg.Grid)
+		}
+	}
+	return at
+}
+
 // Recall marks readings as taken without taking them: after a restart, those of
 // the last beats before the saved state, so that a broker's second delivery of
 // them counts as repeated and not as late.
