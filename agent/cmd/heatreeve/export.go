@@ -11,18 +11,21 @@ import (
 )
 
 // exportHelp tells what an export holds.
-const exportHelp = `Readings come as they were committed: in the order of time but for late ones. time
-is their event time, stamped tells whether it came with the value rather than from
-the clock at arrival, and the value is in SI: K, Pa absolute, kg/s, m3/s, mol/s or a
-ratio; value_SI and a note on stderr where a tag has not always had the same. Minutes of a load come in the order of time; means are empty where nothing
-was measured. All times are UTC. csv (RFC 4180) has its units in the header; json is
-an object a line; parquet is a file of its own kind, with the time in ns, and goes
-to a file or a pipe.
+const exportHelp = `Readings come as they were committed: in the order of time but for late ones.
+time is their event time, stamped tells whether it came with the value rather
+than from the clock at arrival, and the value is in SI, with its unit in its
+name: K, Pa absolute, kg/s, m3/s, m3, J and the like; value_SI where there is
+none, or where a tag has not always had the same, which a note on stderr tells.
+Minutes of a load come in the order of time; means are empty where nothing was
+measured. All times are UTC. csv (RFC 4180) has its units in the header; json is
+an object a line; parquet has the same columns, with the time in ns, compressed
+with gzip, and goes to a file or a pipe.
 
-DATE is written as for a report; by whose clock, --zone tells. The data folder may be
-that of an agent that runs: it gives the rows out, and goes on undisturbed. A copy
-of the history's file does as well, on a medium that takes no writes too. An export
-that did not come to its end, or could not read all, ends with status 1.
+DATE is written as for a report; by whose clock, --zone tells. The data folder
+may be that of an agent that runs: it gives the rows out, and goes on
+undisturbed. A copy of the history's file does as well, on a medium that takes
+no writes too. An export that did not come to its end, or could not read all,
+ends with status 1.
 `
 
 func runExport(ctx context.Context, c *call) error {

@@ -82,5 +82,10 @@ func TestHelpNamesTheOptions(t *testing.T) {
 				t.Errorf("%s: usage names %s, the options do not:\n%s", c.name, word, help)
 			}
 		}
+		for line := range strings.Lines(help) {
+			if option, ok := strings.CutPrefix(line, "  --"); ok && !strings.Contains(c.operand, "--"+strings.TrimSpace(option)) {
+				t.Errorf("%s: the options name --%s, usage does not: %s", c.name, strings.TrimSpace(option), c.operand)
+			}
+		}
 	}
 }

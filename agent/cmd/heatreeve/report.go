@@ -11,20 +11,23 @@ import (
 
 // reportHelp tells what a report needs and holds.
 const reportHelp = `The data folder may be that of an agent that runs: it is asked then, and goes on
-undisturbed. A copy of the history's file does as well. DATE is a day (2026-12-31)
-or a month (2026-12) by the clock of the plant, a local time (2026-12-31T06:00), or
-one with its offset to UTC (2026-12-31T06:00+01:00). --to is the end and not in the
-report any more; without it, the report goes as far as the history.
+undisturbed. A copy of the history's file does as well. DATE is a day
+(2026-12-31) or a month (2026-12) by the clock of the plant, a local time
+(2026-12-31T06:00), or one with its offset to UTC (2026-12-31T06:00+01:00).
+--to is the end and not in the report any more; without it, the report goes as
+far as the history.
 
-Uncertainties are those of given less taken as measured, with the coverage factor 2
-in table and csv; json is SI, and has the standard one too. What lasts, such as the
-error of an instrument, does not average out of them, what is random does; --shares
-shows both, and what each input has in them, which json always has. Heat that was
-bridged is told apart, and in no other figure; missing time has no heat in it. By day
-and by month the peak demand is that of 15 minutes. csv has no line of totals, and its notes go to
-stderr. A load whose name a spreadsheet would take for a formula (= + - @ first) has
-an apostrophe before it in csv. A report that had to leave out damaged records ends
-with status 1.
+Uncertainties are those of given less taken as measured, with the coverage
+factor 2 in table and csv; json is SI, and has the standard one too. What lasts,
+such as the error of an instrument, does not average out of them, what is random
+does; --shares shows both in the table, and what each input has in them. csv has
+both without it, json the inputs too.
+
+Heat that was bridged is told apart, and in no other figure; missing time has no
+heat in it. By day and by month the peak demand is that of 15 minutes. csv has
+no line of totals, and its notes go to stderr. A load whose name a spreadsheet
+would take for a formula (= + - @ first) has an apostrophe before it in csv. A
+report that had to leave out damaged records ends with status 1.
 `
 
 // details are what a report may show beyond its usual columns.

@@ -9,11 +9,12 @@ import (
 )
 
 // salvageHelp tells what is saved.
-const salvageHelp = `The damaged file is only read, and stays as it is. Saved is what passes its checksum;
-what is lost is told by number and time, and ends with status 1. Batches are what
-single commits brought. End the agent first. To go on with what is saved, move the
-damaged file away and the new one to its place. Without the state of the accounts they go
-on from the registers, and the time since the last commit is missing.
+const salvageHelp = `The damaged file is only read, and stays as it is. Saved is what passes its
+checksum; what is lost is told by number and time, and ends with status 1.
+Batches are what single commits brought. End the agent first. To go on with what
+is saved, move the damaged file away and the new one to its place. Without the
+state of the accounts they go on from the registers, and the time since the last
+commit is missing.
 `
 
 func runSalvage(_ context.Context, c *call) error {

@@ -28,8 +28,12 @@ func TestWrapped(t *testing.T) {
 // What is told for people fits a terminal of 80 columns, but for declarations, which are
 // to be copied, and for errors, which are of one line.
 func TestOutputFitsATerminal(t *testing.T) {
-	for _, args := range [][]string{
-		{"help"}, {"properties", "--help"}, {"duty", "--help"}, {"run", "--help"}, {"demo", "--help"}, {"properties", "--list"},
+	told := [][]string{{"help"}}
+	for _, c := range commands {
+		told = append(told, []string{c.name, "--help"})
+	}
+	for _, args := range append(told, [][]string{
+		{"properties", "--list"},
 		{"properties", "unobtainium", "--temperature", "20 °C"},
 		{"properties", "propylene glycol 32 %", "--temperature", "-5 °C, 20 °C, 60 °C", "--pressure", "3 bar"},
 		{"properties", "CO2", "--temperature", "20 °C", "--pressure", "30 bar"},
@@ -38,7 +42,7 @@ func TestOutputFitsATerminal(t *testing.T) {
 		{"properties", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}, model: ideal}", "--temperature", "132.5 °C"},
 		{"properties", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}, model: ideal}", "--temperature", "132.5 °C,180 °C"},
 		{"duty", "{flue gas: {fuel: {CH4: 92 %, C2H6: 8 %}, excess air: 15 %}}", "--flow", "12 000 Nm3/h", "--from", "241.5 °C", "--to", "132.5 °C"},
-	} {
+	}...) {
 		_, out, errs := invoke(args...)
 		if out+errs == "" {
 			t.Errorf("%q tells nothing", args)
