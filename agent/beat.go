@@ -166,6 +166,10 @@ func (a *Agent) last(r *rhythm) error {
 	if !a.commit(r, time.Now(), true) {
 		return fmt.Errorf("last commit: %s", r.books.fault)
 	}
+	if r.pace.through <= 0 {
+		a.o.Log.Info("heatreeve has stopped; event time had not begun")
+		return nil
+	}
 	a.o.Log.Info("heatreeve has stopped", "event_time", time.Unix(0, r.pace.through).UTC())
 	return nil
 }

@@ -48,7 +48,7 @@ func Salvage(data, into string) (s Salvaged, err error) {
 
 // salvageLines tells what is saved and what is lost.
 func salvageLines(r *store.Report) (lines []string) {
-	at := func(ns int64) string { return time.Unix(0, ns).UTC().Format("2006-01-02 15:04:05 UTC") }
+	newest := max(r.Batches.To, r.LostBatches.To, r.Hours.To)
 	for _, part := range []struct {
 		what string
 		store.Tally
@@ -58,7 +58,7 @@ func salvageLines(r *store.Report) (lines []string) {
 		{"damaged: %d records of minutes", r.DamagedMinutes}, {"damaged: %d records of hours, built anew where there are minutes", r.DamagedHours},
 	} {
 		if part.Count > 0 {
-			lines = append(lines, fmt.Sprintf(part.what+", from %s to %s", part.Count, at(part.From), at(part.To)))
+			lines = append(lines, fmt.Sprintf(part.what, part.Count)+between(part.Tally, newest))
 		}
 	}
 	switch {
@@ -73,7 +73,7 @@ func salvageLines(r *store.Report) (lines []string) {
 	for _, part := range []struct {
 		what  string
 		saved bool
-	}{{"names of tags and loads", r.Names}, {"registers", r.Registers}, {"state of the accounts", r.State}} {
+	}{{"names of tags and loads", r.Names}, {"registers", r.Registers}, {"state of the accounts, and where the plant is", r.State}} {
 		word := "lost"
 		if part.saved {
 			word = "saved"
@@ -81,6 +81,23 @@ func salvageLines(r *store.Report) (lines []string) {
 		lines = append(lines, word+": "+part.what)
 	}
 	return lines
+}
+
+// between tells from when to when records lie. Those from before event time began have no
+// time, and a damaged key may tell any: what is beyond the newest record by more than an
+// hour is left open.
+func between(t store.Tally, newest int64) string {
+	at := func(ns int64) string { return time.Unix(0, ns).UTC().Format("2006-01-02 15:04:05 UTC") }
+	begun, ended := t.From > 0, t.To <= newest+int64(time.Hour)
+	switch {
+	case begun && ended:
+		return ", from " + at(t.From) + " to " + at(t.To)
+	case ended:
+		return ", up to " + at(t.To)
+	case begun && t.From <= newest:
+		return ", from " + at(t.From) + " on"
+	}
+	return ""
 }
 
 // salvageable adds to the error of a damaged history what saves the rest of it.

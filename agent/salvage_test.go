@@ -62,3 +62,21 @@ func TestLedgerAfterASalvage(t *testing.T) {
 		t.Errorf("%d pages wiped left the registers, %d took the state", exact, stateless)
 	}
 }
+
+// What has no time of its own, and what a damaged key tells, is not told as a date.
+func TestSpansOfASalvage(t *testing.T) {
+	const begin, hour = int64(1_800_000_000) * sec, 3600 * sec
+	for _, tt := range []struct {
+		from, to int64
+		want     string
+	}{
+		{begin, begin + hour, ", from 2027-01-15 08:00:00 UTC to 2027-01-15 09:00:00 UTC"},
+		{0, begin, ", up to 2027-01-15 08:00:00 UTC"},
+		{begin, begin + 1e6*hour, ", from 2027-01-15 08:00:00 UTC on"},
+		{begin + 1e6*hour, begin + 2e6*hour, ""},
+	} {
+		if got := between(store.Tally{Count: 1, From: tt.from, To: tt.to}, begin+2*hour); got != tt.want {
+			t.Errorf("from %d to %d: %q, want %q", tt.from, tt.to, got, tt.want)
+		}
+	}
+}

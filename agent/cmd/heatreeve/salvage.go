@@ -14,7 +14,7 @@ checksum; what is lost is told by number and time, and ends with status 1.
 Batches are what single commits brought. End the agent first. To go on with what
 is saved, move the damaged file away and the new one to its place. Without the
 state of the accounts they go on from the registers, and the time since the last
-commit is missing.
+commit is missing; reports and exports want --zone until the agent has run.
 `
 
 func runSalvage(_ context.Context, c *call) error {
