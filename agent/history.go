@@ -84,8 +84,12 @@ func (h *history) fill(ctx context.Context, r *Report, q Query, plan account.Pla
 var errNoRecord = errors.New("the history holds no record")
 
 func noRecord(r *Report, chosen []string) error {
-	return fmt.Errorf("%w of %s from %s to %s; it goes up to %s",
-		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), wallClock(r.To), wallClock(r.Accounted))
+	end := "to " + wallClock(r.To)
+	if !r.To.After(r.From) { // no end was given, and the history has ended before
+		end = "on"
+	}
+	return fmt.Errorf("%w of %s from %s %s; it goes up to %s",
+		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), end, wallClock(r.Accounted))
 }
 
 func wallClock(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }

@@ -46,7 +46,7 @@ func TestReportPage(t *testing.T) {
 		{"from=2026-10-24&load=hotwater", 400, `load "hotwater" is not in the history; did you mean "hot-water"?`},
 		{"from=2026-10-24&load=steam", 400, `there are: hot-water, glycol`},
 		{"from=2026-10-24&format=csv", 400, "format is no parameter; known: from, to, by"},
-		{"from=2027-01-01", 404, "the history holds no record of hot-water, glycol from 2027-01-01 00:00 +00:00"},
+		{"from=2027-01-01", 404, "the history holds no record of hot-water, glycol from 2027-01-01 00:00 +00:00 on; it goes up to"},
 		{"from=2020-01-01&to=2021-01-01", 404, "it goes up to 2026-10-28 03:00 +00:00"},
 	} {
 		w := httptest.NewRecorder()

@@ -105,5 +105,8 @@ func salvageable(path string, err error) error {
 	if !errors.Is(err, store.ErrDamaged) {
 		return err
 	}
-	return fmt.Errorf("%w; heatreeve salvage --data %s saves what can be read of it to a new file and tells what is lost", err, filepath.Dir(path))
+	if filepath.Base(path) == HistoryFile {
+		path = filepath.Dir(path)
+	}
+	return fmt.Errorf("%w; heatreeve salvage --data %s saves what can be read of it to a new file and tells what is lost", err, path)
 }

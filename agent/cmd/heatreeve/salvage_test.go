@@ -61,6 +61,14 @@ func TestSalvage(t *testing.T) {
 	if status := run(t.Context(), []string{"report", "--data", data, "--from", "1970-01-01"}, &out, &fault); status != exitFailed || !strings.Contains(fault.String(), "heatreeve salvage --data "+data) {
 		t.Errorf("a report on the damaged history: status %d, %s", status, &fault)
 	}
+	copied := filepath.Join(t.TempDir(), "copied.db")
+	if err := os.WriteFile(copied, cut, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	fault.Reset()
+	if status := run(t.Context(), []string{"report", "--data", copied, "--from", "1970-01-01"}, &out, &fault); status != exitFailed || !strings.Contains(fault.String(), "heatreeve salvage --data "+copied+" ") {
+		t.Errorf("a report on a damaged copy: status %d, %s", status, &fault)
+	}
 	into := filepath.Join(data, "rest")
 	out.Reset()
 	if status := run(t.Context(), []string{"salvage", "--data", data, "--into", into}, &out, &fault); status != exitFailed || !strings.Contains(out.String(), "damaged: ") {
