@@ -58,6 +58,7 @@ type window struct {
 	looks   int  // since that commit
 	fresh   int  // looks for which the connection is still new
 	grown   int  // messages between the last two looks
+	calm    int  // looks since the limit was last reached
 }
 
 // committed notes that a commit has acknowledged n messages.
@@ -75,12 +76,12 @@ func (w *window) connected() { w.eager, w.misses, w.limit, w.fresh = true, 0, 0,
 func (w *window) failed() { w.eager, w.early, w.acked = false, false, 0 }
 
 // wakeful reports whether the next look should not wait for the beat: a commit may be
-// answered, a silence may be that of a broker that waits, a limit is known, or much
-// comes. In a plant with little to say, looking ten times a second costs a third of what
+// answered, a silence may be that of a broker that waits, a limit that is known was
+// reached lately, or much comes. In a plant with little to say, looking ten times a second costs a third of what
 // receiving it does.
 func (w *window) wakeful() bool {
 	silence := w.eager && w.silent > 0 && w.waiting >= leastWindow
-	return w.limit > 0 || w.fresh > 0 || w.looks < answerLooks || w.grown > busyLook || silence
+	return w.limit > 0 && w.calm < proofLooks || w.fresh > 0 || w.looks < answerLooks || w.grown > busyLook || silence
 }
 
 // look takes in how many messages wait now, and reports whether to commit for the
@@ -90,6 +91,9 @@ func (w *window) look(waiting int) bool {
 		w.judge(waiting)
 	}
 	w.outgrown(waiting)
+	if w.calm++; waiting == w.limit {
+		w.calm = 0
+	}
 	if w.silent++; waiting != w.waiting {
 		w.silent = 0
 	}
@@ -109,6 +113,7 @@ func (w *window) reached(waiting int) bool {
 	if !w.eager || w.limit == 0 || waiting != w.limit {
 		return false
 	}
+	w.calm = 0
 	if w.proof == 0 && w.early && w.looks < answerLooks { // the silence at the limit is answered in full
 		w.early, w.proof, w.hits = false, proofLooks, 0
 	}
@@ -144,7 +149,7 @@ func (w *window) judge(waiting int) {
 	case answered:
 		w.eager, w.proven, w.misses = true, true, 0
 		if w.early {
-			w.limit, w.proof, w.hits = w.acked, proofLooks, 0
+			w.limit, w.proof, w.hits, w.calm = w.acked, proofLooks, 0, 0
 		}
 	case w.early:
 		w.misses++

@@ -125,3 +125,35 @@ func TestRaisedWindowIsBelieved(t *testing.T) {
 		t.Errorf("%d commits in ten minutes, limit %d; want about 60 and, in the first half minute, 75 more, and none", commits, w.limit)
 	}
 }
+
+// A limit that a backlog made known keeps nobody awake once little comes.
+func TestLimitSleepsInAQuietPlant(t *testing.T) {
+	var w window
+	w.connected()
+	backlog := func(i int) int {
+		switch {
+		case i < 2:
+			return 405
+		case i%100 == 0:
+			return 1
+		}
+		return 0
+	}
+	play(&w, 20, 100, 3000, backlog)
+	if w.limit != 20 {
+		t.Fatalf("limit %d after the backlog, want 20", w.limit)
+	}
+	awake := 0
+	play(&w, 20, 100, 6000, func(i int) int {
+		if i%10 != 0 && w.wakeful() {
+			awake++
+		}
+		return backlog(100 + i)
+	})
+	if want := answerLooks * 6000 / 100; awake > want {
+		t.Errorf("%d looks between the beats of ten minutes, want at most %d", awake, want)
+	}
+	if most, _ := play(&w, 20, 100, 6000, steadily(50)); most > 800 || w.limit != 20 {
+		t.Errorf("the plant is busy again: the broker keeps up to %d messages, limit %d; want at most 800, and 20", most, w.limit)
+	}
+}
