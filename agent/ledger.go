@@ -56,10 +56,10 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 	}
 	a.site, a.zone, a.units = s.Name, s.Zone.String(), unitsOf(s)
 	l := &ledger{accounts: a, store: db, write: db.Commit, log: log, saved: now}
-	if l.tagIDs, err = db.IDs("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
+	if l.tagIDs, err = l.number("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
 		return nil, err
 	}
-	if l.loadIDs, err = db.IDs("load", names(s.Loads, func(t site.HeatLoad) string { return t.Name })); err != nil {
+	if l.loadIDs, err = l.number("load", names(s.Loads, func(t site.HeatLoad) string { return t.Name })); err != nil {
 		return nil, err
 	}
 	if err := l.resume(); err != nil {
@@ -70,6 +70,17 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 		return nil, err
 	}
 	return l, nil
+}
+
+// number returns the numbers of names in the history. A full one makes room for those
+// that are new.
+func (l *ledger) number(kind string, names []string) ([]uint32, error) {
+	for {
+		ids, err := l.store.IDs(kind, names)
+		if !store.IsFull(err) || !l.makeRoom(0) { // nothing is too old at the epoch
+			return ids, err
+		}
+	}
 }
 
 // first commits the run's own checkpoint. On a full disk it makes room as long as

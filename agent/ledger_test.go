@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"fmt"
 	"log/slog"
 	"path/filepath"
 	"strings"
@@ -335,6 +336,43 @@ func TestLedgerStartsOnAFullDisk(t *testing.T) {
 	}
 	if l.fault != "" && l.committed[0] != l.registers()[0] {
 		t.Errorf("shows %+v, has %+v", l.committed[0], l.registers()[0])
+	}
+}
+
+// So it is where the site file has new tags, whose names take pages in a row.
+func TestLedgerNamesOnAFullDisk(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	tight := store.Options{MaxBytes: 1 << 20, MaxFile: 1 << 20}
+	l, shut := open(t, parsed(t, benchSite), path, tight)
+	for at := int64(0); l.failures == 0; at++ {
+		in := make([]ingest.Reading, 3000)
+		for i := range in {
+			in[i] = ingest.Reading{Tag: i % 3, At: clock.UnixNano() + at*sec + int64(i)*7919, Value: 300 + float64(i)*0.1234567891 + float64(at)*0.987654321}
+		}
+		l.beat(in, clock.UnixNano()+(at-5)*sec)
+		l.commit(clock, at%10 == 0)
+	}
+	shut()
+	var more strings.Builder
+	for i := range 6000 {
+		fmt.Fprintf(&more, "  TX-%d: {topic: x/%d, unit: °C, accuracy: ± 0.3 K}\n", i, i)
+	}
+	grown := parsed(t, strings.Replace(benchSite, "loads:", more.String()+"loads:", 1))
+	db, err := store.Open(path, tight)
+	if err != nil {
+		t.Fatal(err)
+	}
+	names := names(grown.Tags, func(t site.Tag) string { return t.Name })
+	if _, err := db.IDs("tag", names); !store.IsFull(err) {
+		t.Fatalf("a full history takes %d names: %v", len(names), err)
+	}
+	if err := db.Close(); err != nil {
+		t.Fatal(err)
+	}
+	l, shut = open(t, grown, path, tight)
+	defer shut()
+	if len(l.tagIDs) != len(names) {
+		t.Errorf("%d tags have a number, want %d", len(l.tagIDs), len(names))
 	}
 }
 

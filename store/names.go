@@ -19,7 +19,7 @@ func (s *Store) ID(kind, name string) (uint32, error) {
 }
 
 // IDs is ID for many names in one transaction. When all are known it writes
-// nothing.
+// nothing. If [IsFull] holds for the error, it can be tried again after a [Store.Trim].
 func (s *Store) IDs(kind string, names []string) ([]uint32, error) {
 	known, err := s.Names(kind)
 	if err != nil {
@@ -40,6 +40,7 @@ func (s *Store) IDs(kind string, names []string) ([]uint32, error) {
 		ids, err = s.number(tx, kind, names)
 		return err
 	})
+	s.full = IsFull(err)
 	if err != nil {
 		return nil, fmt.Errorf("number the names in history %q: %w", s.path, err)
 	}

@@ -90,7 +90,7 @@ type Store struct {
 	newest  int64      // Through of the last beat
 	sealing sealer
 	torn    []error // what the transaction at hand cannot read and goes on without
-	full    bool    // the last commit found no room
+	full    bool    // the last commit, or naming, found no room
 	closed  bool
 }
 

@@ -25,7 +25,7 @@ const (
 	perKey = 16
 
 	// reliefShare is the share of what is in use, and reliefBytes the least, that
-	// Trim removes after a Commit that found no room.
+	// Trim removes after a Commit, or IDs, that found no room.
 	reliefShare = 16
 	reliefBytes = 256 << 10
 )
@@ -41,7 +41,7 @@ type Trimmed struct{ Readings, Minutes, Hours, Damaged int64 }
 // oldest hours. Beats after the last checkpoint are never removed, for a restart
 // needs them, nor the minutes of the newest hour, nor any register. Readings go a
 // group or block at a time and the last of these stays: 48 KiB of them, or a
-// day's, may be kept longer than MaxAge. After a Commit that found no room, Trim makes
+// day's, may be kept longer than MaxAge. After a Commit, or IDs, that found no room, Trim makes
 // some, however much MaxBytes allows.
 func (s *Store) Trim(now int64) (Trimmed, error) {
 	s.mu.Lock()
