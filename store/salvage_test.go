@@ -1,6 +1,7 @@
 package store
 
 import (
+	"bytes"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -8,6 +9,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	bolt "go.etcd.io/bbolt"
 )
 
 // salvaged salvages the bytes of a damaged file of numbered batches. It holds the result
@@ -220,5 +223,49 @@ func TestSalvageNoise(t *testing.T) {
 		if r := salvaged(t, t.TempDir(), noise); r.Batches.Count+r.Minutes.Count+r.Hours.Count != 0 || r.Unreadable == 0 || r.Whole() {
 			t.Errorf("of noise: %+v", r)
 		}
+	}
+}
+
+// TestSalvageLosesTheNewest damages a record among the last of the newest state, as it is
+// after a kill. The state before has that record whole, but not the batch after it: that
+// one is told as lost, and the accounts do not go on as if it had never been.
+func TestSalvageLosesTheNewest(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "history.db")
+	s, err := Open(path, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer s.Close()
+	for n := range uint64(9) {
+		commit(t, s, numbered(n+1))
+	}
+	file, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var tail []byte
+	var at int
+	err = s.db.View(func(tx *bolt.Tx) error {
+		tail = tailRecords(tx)
+		root := int(tx.Cursor().Bucket().Root()) * s.db.Info().PageSize
+		at = root + bytes.Index(file[root:], tail[:20])
+		return nil
+	})
+	if err != nil || len(tail) < 100 {
+		t.Fatalf("%d bytes in the tails, %v", len(tail), err)
+	}
+	file[at+10] ^= 16
+	from := filepath.Join(t.TempDir(), "from.db")
+	rewrite(t, from, file)
+	if damaged, err := Open(from, Options{}); err == nil {
+		damaged.Close()
+		t.Fatal("the damage is not noticed")
+	}
+	r, err := Salvage(from, from+".to")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if r.Whole() || r.Batches.Count != 8 || r.LostBatches.Count != 1 {
+		t.Errorf("%+v; want 8 batches saved and 1 lost", r)
 	}
 }

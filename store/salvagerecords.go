@@ -266,8 +266,10 @@ func (r *refit) put(g *openGroup, oldLast uint64) error {
 }
 
 // openGroup writes what the open group holds in the state in which most of it can be read.
+// Where another state tells of records after these, one is counted as lost.
 func (r *refit) openGroup(trees []*salvagedTree) error {
 	var best *openGroup
+	told := uint64(0) // number of the last record that any state tells of
 	for _, t := range trees {
 		g := newOpenGroup(r.passed + 1)
 		var b []byte
@@ -282,6 +284,7 @@ func (r *refit) openGroup(trees []*salvagedTree) error {
 		for i := range tails {
 			b = append(b, t.values[string(bucketTail(i))+"/"+string(keyRecords)]...)
 		}
+		told = max(told, g.last+recordsIn(b))
 		_ = g.replay(b) // up to what cannot be read
 		g.tail = b
 		if best == nil || g.last > best.last {
@@ -300,8 +303,6 @@ func (r *refit) openGroup(trees []*salvagedTree) error {
 	for seq := best.first; len(p.rest) > 0; seq++ {
 		beats, err := p.record(seq, m)
 		if err != nil {
-			r.lose(seq, seq, r.latest, max(r.latest, g.latest)) // and any that follow
-			r.lostAfter = true
 			break
 		}
 		r.add(g, beats)
@@ -309,8 +310,21 @@ func (r *refit) openGroup(trees []*salvagedTree) error {
 			r.before = g.last
 		}
 	}
+	if told > best.last {
+		r.lose(best.last+1, best.last+1, r.latest, max(r.latest, g.latest)) // and any that follow
+		r.lostAfter = true
+	}
 	r.lostAfter = r.lostAfter || best.last < r.checkpoint
 	return r.put(g, best.last)
+}
+
+// recordsIn counts records by their lengths, whatever is in them.
+func recordsIn(b []byte) (n uint64) {
+	for p := (parser{rest: b}); len(p.rest) > 0 && !p.bad; n++ {
+		p.take(p.uvarint())
+		p.take(4)
+	}
+	return n
 }
 
 // rest writes names, registers, and the state if the records that follow it are whole.
