@@ -147,6 +147,9 @@ func (l *ledger) resume() error {
 	}
 	l.take(known)
 	if !ok { // as a salvaged history may be: there is nothing but registers and the beats
+		if len(known) > 0 {
+			l.log.Warn("the history has no state of the accounts: they go on from the registers as last committed, and the time since then is missing")
+		}
 		return l.replay(true)
 	}
 	same, err := l.accounts.restore(state)
@@ -156,6 +159,7 @@ func (l *ledger) resume() error {
 	if same {
 		return l.replay(true)
 	}
+	l.log.Info("the site file or the rules of booking have changed: the accounts go on by the new ones, from the registers as last committed")
 	begun := l.accounts.begun()
 	l.take(known)
 	if err := l.replay(false); err != nil {

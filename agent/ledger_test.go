@@ -396,3 +396,36 @@ func TestLedgerCountsOnce(t *testing.T) {
 		t.Errorf("tally %+v after a restart, want none", got)
 	}
 }
+
+// The log tells where the accounts go on by other rules than those that they were kept by.
+func TestLedgerTellsOfOtherRules(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "h.db")
+	l, shut := open(t, parsed(t, benchSite), path, store.Options{})
+	feed(l, 0, 100)
+	if err := l.commit(clock, true); err != nil {
+		t.Fatal(err)
+	}
+	shut()
+	for _, tt := range []struct {
+		text string
+		want bool
+	}{
+		{benchSite, false},
+		{strings.Replace(benchSite, "0.5 % of reading", "1 % of reading", 1), true},
+	} {
+		var log strings.Builder
+		db, err := store.Open(path, store.Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if _, err := openLedger(parsed(t, tt.text), db, slog.New(slog.NewTextHandler(&log, nil)), clock); err != nil {
+			t.Error(err)
+		}
+		if err := db.Close(); err != nil {
+			t.Fatal(err)
+		}
+		if got := strings.Contains(log.String(), "have changed"); got != tt.want {
+			t.Errorf("a change is told: %v, want %v\n%s", got, tt.want, &log)
+		}
+	}
+}

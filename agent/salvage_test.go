@@ -1,8 +1,10 @@
 package agent
 
 import (
+	"log/slog"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"heatreeve/store"
@@ -41,7 +43,18 @@ func TestLedgerAfterASalvage(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		l, shut := open(t, s, into, store.Options{})
+		var log strings.Builder
+		db, err := store.Open(into, store.Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		l, err := openLedger(s, db, slog.New(slog.NewTextHandler(&log, nil)), clock)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if told := strings.Contains(log.String(), "no state of the accounts"); told != (r.Names && r.Registers && !r.State) {
+			t.Errorf("page %d wiped: the log says %q of %+v", page, &log, r)
+		}
 		got := l.registers()[0].Given
 		if r.Names && (r.Registers || r.State) && got != last && got != totals[len(totals)-2] || got > last {
 			t.Errorf("page %d wiped: %g J, want %g; %+v", page, got, last, r)
@@ -56,7 +69,9 @@ func TestLedgerAfterASalvage(t *testing.T) {
 		if err := l.commit(clock, false); err != nil {
 			t.Errorf("page %d wiped: %v", page, err)
 		}
-		shut()
+		if err := db.Close(); err != nil {
+			t.Errorf("page %d wiped: %v", page, err)
+		}
 	}
 	if exact < 10 || stateless == 0 {
 		t.Errorf("%d pages wiped left the registers, %d took the state", exact, stateless)
