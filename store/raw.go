@@ -128,7 +128,7 @@ func elements(b []byte) (all []element, bad int) {
 type pageWalk struct {
 	*rawFile
 	seen  map[uint64]bool
-	marks bool  // what it reaches is reached for good
+	marks bool  // it is one of a tree: what it reaches is reached for good, and no page out of its place counts
 	bad   int64 // pages and elements that cannot be read
 }
 
@@ -141,8 +141,12 @@ func (w *pageWalk) tree(id uint64, depth int, leaf func(element)) {
 		return
 	}
 	w.seen[id] = true
-	w.reached[id] = w.reached[id] || w.marks
 	b := w.run(id)
+	if w.marks && len(b) >= pageHead && binary.LittleEndian.Uint64(b) != id {
+		w.bad++
+		return
+	}
+	w.reached[id] = w.reached[id] || w.marks
 	all, bad := elements(b)
 	w.bad += int64(bad)
 	isLeaf := len(b) >= pageHead && binary.LittleEndian.Uint16(b[8:]) == pageLeaf

@@ -208,9 +208,6 @@ func (z *salvage) strays() error {
 			continue
 		}
 		b := z.raw.run(id)
-		if len(b) < pageHead || binary.LittleEndian.Uint64(b) != id {
-			continue
-		}
 		all, _ := elements(b) // keys of a branch have no value, and are nothing
 		for _, e := range all {
 			if e.bucket {

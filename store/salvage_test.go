@@ -269,3 +269,36 @@ func TestSalvageLosesTheNewest(t *testing.T) {
 		t.Errorf("%+v; want 8 batches saved and 1 lost", r)
 	}
 }
+
+// TestSalvageMisplacedRoot writes the root of the state before over that of the newest, as
+// a disk does that writes to the wrong place. What the newest brought is lost, and told.
+func TestSalvageMisplacedRoot(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "history.db")
+	s, err := Open(path, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer s.Close()
+	for n := range uint64(9) {
+		commit(t, s, numbered(n+1))
+	}
+	file, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	raw := openRaw(bytes.NewReader(file), int64(len(file)))
+	if len(raw.metas) != 2 || raw.metas[0].root == raw.metas[1].root {
+		t.Fatalf("meta pages %v", raw.metas)
+	}
+	page := func(m rawMeta) []byte { return file[int64(m.root)*raw.pageSize : int64(m.root+1)*raw.pageSize] }
+	copy(page(raw.metas[0]), page(raw.metas[1]))
+	from := filepath.Join(t.TempDir(), "from.db")
+	rewrite(t, from, file)
+	r, err := Salvage(from, from+".to")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if r.Whole() || r.Unreadable == 0 || r.State || !r.Registers || r.Batches.Count != 8 {
+		t.Errorf("%+v; want 8 batches, registers and no state", r)
+	}
+}
