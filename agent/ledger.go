@@ -24,6 +24,8 @@ const (
 	maxUncommitted = 200_000
 	// maxMinutes bounds the minute records that wait likewise.
 	maxMinutes = 100_000
+	// mostAging is how much older one trim takes the history to be than the one before.
+	mostAging = 7 * 24 * time.Hour
 )
 
 // ledger keeps the accounts and the history of them together: what the accounts
@@ -38,6 +40,7 @@ type ledger struct {
 	batch       store.Batch
 	waiting     int   // readings in batch
 	booked      int64 // event time of committed
+	aged        int64 // event time by which the history was last trimmed; 0: none yet
 	committed   []loads.Totals
 	through     atomic.Int64 // event time as last committed; for any goroutine
 	saved       time.Time    // of the last checkpoint
@@ -65,7 +68,7 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 	if err := l.resume(); err != nil {
 		return nil, fmt.Errorf("resume the accounts: %w", err)
 	}
-	l.committed = l.registers()
+	l.committed, l.aged = l.registers(), l.accounts.engine.Through()
 	if err := l.first(now); err != nil {
 		return nil, err
 	}
@@ -102,7 +105,7 @@ func (l *ledger) first(now time.Time) error {
 // makeRoom gives up the oldest records of a full history, and reports whether there
 // were any to give up.
 func (l *ledger) makeRoom(now int64) bool {
-	t, err := l.store.Trim(now)
+	t, err := l.store.Trim(l.age(now))
 	if err != nil {
 		l.log.Error("history is not trimmed", "error", err)
 		return false
@@ -348,9 +351,19 @@ func (l *ledger) fail(err error) {
 	l.fault = err.Error()
 }
 
+// age is the event time by which the history is trimmed. It follows a leap slowly: one of
+// years is that of a clock that was set wrong, and must not cost all that is older.
+func (l *ledger) age(now int64) int64 {
+	if l.aged > 0 {
+		now = min(now, l.aged+int64(mostAging))
+	}
+	l.aged = now
+	return now
+}
+
 // trim keeps the history within its bounds.
 func (l *ledger) trim(now int64) error {
-	t, err := l.store.Trim(now)
+	t, err := l.store.Trim(l.age(now))
 	if err != nil {
 		return err
 	}

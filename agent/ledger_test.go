@@ -3,6 +3,7 @@ package agent
 import (
 	"fmt"
 	"log/slog"
+	"math"
 	"path/filepath"
 	"strings"
 	"testing"
@@ -373,6 +374,43 @@ func TestLedgerNamesOnAFullDisk(t *testing.T) {
 	defer shut()
 	if len(l.tagIDs) != len(names) {
 		t.Errorf("%d tags have a number, want %d", len(l.tagIDs), len(names))
+	}
+}
+
+// A clock that was set by years costs no history at once, and retention comes there after all.
+func TestLedgerTrimsNoLeap(t *testing.T) {
+	s := parsed(t, benchSite)
+	l, shut := open(t, s, filepath.Join(t.TempDir(), "h.db"), store.Options{MaxAge: 30 * 24 * time.Hour})
+	defer shut()
+	feed(l, 0, 2*3600)
+	if err := l.commit(clock, true); err != nil {
+		t.Fatal(err)
+	}
+	minutes := func() (n int) {
+		for _, err := range l.store.Minutes(l.loadIDs[0], math.MinInt64, math.MaxInt64) {
+			if err != nil {
+				t.Fatal(err)
+			}
+			n++
+		}
+		return n
+	}
+	trims := func(now int64, times int) {
+		for range times {
+			if err := l.trim(now); err != nil {
+				t.Fatal(err)
+			}
+		}
+	}
+	all := minutes()
+	trims(clock.UnixNano()+2*3600*sec, 1)
+	trims(clock.AddDate(20, 0, 0).UnixNano(), 4)
+	if n := minutes(); all < 100 || n != all {
+		t.Errorf("%d minutes of %d are left soon after a leap of 20 years", n, all)
+	}
+	trims(clock.AddDate(20, 0, 0).UnixNano(), 2)
+	if n := minutes(); n >= all {
+		t.Errorf("%d minutes of %d are left at 42 days, of 30", n, all)
 	}
 }
 
