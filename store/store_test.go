@@ -14,7 +14,9 @@ import (
 // is checked.
 func newStore(t testing.TB, o Options) *Store {
 	t.Helper()
-	return openStore(t, filepath.Join(t.TempDir(), "history.db"), o)
+	s := openStore(t, filepath.Join(t.TempDir(), "history.db"), o)
+	s.db.NoSync = true // nothing cuts the power
+	return s
 }
 
 func openStore(t testing.TB, path string, o Options) *Store {

@@ -224,9 +224,9 @@ func contents(t *testing.T, s *Store) (c content) {
 // batch and goes on after a Trim, again and again, with all that is newer than
 // the oldest kept.
 func TestFull(t *testing.T) {
-	s := newStore(t, Options{MaxBytes: 1 << 40, MaxFile: 6 << 20})
+	s := newStore(t, Options{MaxBytes: 1 << 40, MaxFile: 3 << 20})
 	full := 0
-	for n := uint64(1); n <= 3000 || full < 3; n++ {
+	for n := uint64(1); n <= 1000 || full < 3; n++ {
 		if n > 60_000 {
 			t.Fatalf("full only %d times", full)
 		}
