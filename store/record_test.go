@@ -158,6 +158,9 @@ func FuzzParsers(f *testing.F) {
 			value = binary.LittleEndian.AppendUint32(slices.Clone(value), checksum(key, value))
 			if all, err := parseMinutes(nil, key, value, anyLoad); err == nil {
 				again, err := parseMinutes(nil, key, appendMinutes(nil, key, all), anyLoad)
+				for i, m := range all {
+					all[i] = m.kept() // a minute of the first layout has more digits
+				}
 				if err != nil || !sameMinutes(again, all) {
 					t.Errorf("minutes %+v were read again as %+v, %v", all, again, err)
 				}
