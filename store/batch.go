@@ -60,12 +60,14 @@ type Register struct {
 }
 
 // Batch is what one [Store.Commit] writes in one transaction. Minutes and
-// Registers replace those of the same load (and start). Checkpoint, when not nil,
+// Registers replace those of the same load (and start), and Events those of the same At and
+// Number. Checkpoint, when not nil,
 // replaces the engine's state and stands for everything up to and including
 // this batch's beats.
 type Batch struct {
 	Beats      []Beat
 	Minutes    []Minute
 	Registers  []Register
+	Events     []Event
 	Checkpoint []byte
 }

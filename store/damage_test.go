@@ -78,6 +78,11 @@ func outcome(t *testing.T, path string) error {
 	if _, err := s.Registers(); err != nil {
 		return err
 	}
+	for _, err := range s.Events(math.MinInt64, math.MaxInt64) {
+		if err != nil {
+			return err
+		}
+	}
 	ids, err := s.Names("tag")
 	if err != nil {
 		return err

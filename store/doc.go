@@ -1,6 +1,6 @@
 // Package store keeps the history of a plant in one bbolt file: the readings
 // as they came, one record a minute and one an hour of each load, the energy
-// registers, and the engine's own state. Everything that belongs together is committed in one
+// registers, what happened beside that, and the engine's own state. Everything that belongs together is committed in one
 // transaction, so that a process killed at any moment finds on its return
 // either all of a batch or nothing of it.
 //
@@ -26,13 +26,17 @@
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
 //	minutes    int64 start, uint32 load / 8 -> minute records, CRC
 //	hours      int64 start, uint32 load / 8 -> hour records, CRC
+//	events     int64 at, uint64 number -> int64 until (0: it lasts), then for kind, subject
+//	           and text: uvarint length, bytes; CRC
 //	registers  "all" -> for each load, by number: uint32 load and 7 float64 (given,
 //	           taken, measured, missing, bridged, bridged given and taken); CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
 //	           record it stands for, the engine's bytes, CRC
 //
-// names, minutes, hours and state also hold an empty bucket named 00: a bucket that holds
+// names, minutes, hours, events and state also hold an empty bucket named 00: a bucket that holds
 // another is never laid into the root's page, whose room the tails need.
+//
+// The sequence of the bucket events is the greatest number that an event has borne.
 //
 // Each batch that has beats makes one record, and records are numbered from 1
 // without a gap. A record is
@@ -179,7 +183,7 @@
 // it, which spares the others a page. Where it is not, Open makes it from a walk over all
 // pages, after the one that looks for damage; where it is, it is looked at as well.
 //
-// Open brings a file of version 1, which has neither hours nor sealed, and 4 float64 in each
+// Open brings a file of version 1, which has neither hours, events nor sealed, and 4 float64 in each
 // register, to version 2: it moves the
 // tails to recent, which makes room in the root's page, and adds what is missing,
 // with built and trimmed at the least int64. The commits that follow build the hours

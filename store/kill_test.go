@@ -9,6 +9,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"testing"
 )
@@ -36,10 +37,43 @@ func numbered(n uint64) Batch {
 	for tag := range uint32(n % 50) { // to make the batches differ in size
 		b.Beats[0].Readings = append(b.Beats[0].Readings, Reading{Tag: 2 + tag, At: at, Value: math.Sqrt(float64(n))})
 	}
+	if e, ok := eventOf(n); ok {
+		b.Events = []Event{e}
+	}
 	if n%7 == 0 {
 		b.Checkpoint = binary.LittleEndian.AppendUint64(nil, n)
 	}
 	return b
+}
+
+// eventOf is the event in batch n: every eleventh begins one, which the third after that ends.
+func eventOf(n uint64) (e Event, ok bool) {
+	begun := n - n%11
+	e = Event{At: int64(begun) * second, Number: begun, Kind: "test", Subject: "P-1", Text: fmt.Sprintf("number %d", begun)}
+	if n%11 == 3 {
+		e.Until = int64(n) * second
+	}
+	return e, begun > 0 && (n%11 == 0 || n%11 == 3)
+}
+
+// testEvents compares all events in s with those of the numbers 1 to n.
+func testEvents(t *testing.T, s *Store, n uint64) {
+	t.Helper()
+	var want []Event
+	for i := range n {
+		if e, ok := eventOf(i + 1); ok && e.Until == 0 {
+			want = append(want, e)
+		} else if ok {
+			want[len(want)-1] = e
+		}
+	}
+	if got := drain(t, s.Events(math.MinInt64, math.MaxInt64)); !slices.Equal(got, want) {
+		t.Errorf("%d events after number %d, want %d:\n%+v\n%+v", len(got), n, len(want), got, want)
+	}
+	next, err := s.NextEvent()
+	if err != nil || next != n-n%11+1 {
+		t.Errorf("NextEvent() = %d, %v after number %d", next, err, n)
+	}
 }
 
 // commitForEver goes on where the history ends, and tells each number once its commit
@@ -106,6 +140,7 @@ func TestKill(t *testing.T) {
 		}
 		last = n
 		testNumbered(t, s, n)
+		testEvents(t, s, n)
 		if err := s.Close(); err != nil {
 			t.Fatal(err)
 		}

@@ -1,6 +1,7 @@
 package store
 
 import (
+	"cmp"
 	"maps"
 	"math"
 	"os"
@@ -18,6 +19,7 @@ type model struct {
 	state     []byte
 	minutes   map[[2]int64]Minute // by load and start
 	registers map[uint32]Register
+	events    map[[2]int64]Event // by At and Number
 }
 
 func (m *model) commit(b Batch) {
@@ -27,6 +29,9 @@ func (m *model) commit(b Batch) {
 	}
 	for _, r := range b.Registers {
 		m.registers[r.Load] = r
+	}
+	for _, e := range b.Events {
+		m.events[[2]int64{e.At, int64(e.Number)}] = e.kept()
 	}
 	if b.Checkpoint != nil {
 		m.state, m.mark = b.Checkpoint, len(m.beats)
@@ -41,11 +46,20 @@ var anyRegister = rapid.Custom(func(t *rapid.T) Register {
 	return r
 })
 
+var anyEvent = rapid.Custom(func(t *rapid.T) Event {
+	instant := rapid.OneOf(rapid.Int64Range(-5, 5), rapid.Int64())
+	return Event{
+		At: instant.Draw(t, "at"), Until: instant.Draw(t, "until"), Number: rapid.Uint64Range(0, 3).Draw(t, "number"),
+		Kind: rapid.String().Draw(t, "kind"), Subject: rapid.String().Draw(t, "subject"), Text: rapid.String().Draw(t, "text"),
+	}
+})
+
 var anyBatch = rapid.Custom(func(t *rapid.T) Batch {
 	b := Batch{
 		Beats:     rapid.SliceOfN(anyBeat, 0, 12).Draw(t, "beats"),
 		Minutes:   rapid.SliceOfN(anyMinute, 0, 4).Draw(t, "minutes"),
 		Registers: rapid.SliceOfN(anyRegister, 0, 4).Draw(t, "registers"),
+		Events:    rapid.SliceOfN(anyEvent, 0, 3).Draw(t, "events"),
 	}
 	if rapid.IntRange(0, 3).Draw(t, "with checkpoint") == 0 {
 		b.Checkpoint = rapid.SliceOfN(rapid.Byte(), 0, 40).Draw(t, "checkpoint")
@@ -68,7 +82,7 @@ func TestModel(t *testing.T) {
 		path := filepath.Join(dir, "history.db")
 		group := rapid.SampledFrom([]int{100, 3000, 8000}).Draw(t, "group")
 		enough := rapid.SampledFrom([]int{1, 40, 1 << 16}).Draw(t, "enough")
-		m := model{minutes: map[[2]int64]Minute{}, registers: map[uint32]Register{}}
+		m := model{minutes: map[[2]int64]Minute{}, registers: map[uint32]Register{}, events: map[[2]int64]Event{}}
 		for range rapid.IntRange(1, 4).Draw(t, "openings") {
 			s, err := Open(path, Options{})
 			if err != nil {
@@ -111,6 +125,7 @@ func (m *model) compare(t *rapid.T, s *Store) {
 		t.Fatalf("Minutes: %v\nwant %v", got, want)
 	}
 	m.compareHours(t, s)
+	m.compareEvents(t, s)
 	registers, err := s.Registers()
 	var all []Register
 	for _, load := range slices.Sorted(maps.Keys(m.registers)) {
@@ -118,6 +133,21 @@ func (m *model) compare(t *rapid.T, s *Store) {
 	}
 	if err != nil || !slices.Equal(appendRegisters(nil, registers), appendRegisters(nil, all)) {
 		t.Fatalf("Registers() = %v, %v; want %v", registers, err, all)
+	}
+}
+
+func (m *model) compareEvents(t *rapid.T, s *Store) {
+	for _, span := range [][2]int64{{math.MinInt64, math.MaxInt64}, {-2, 3}, {0, 0}} {
+		var want []Event
+		for _, e := range m.events {
+			if before, after := e.At < span[0], e.At >= span[1]; !after && (!before || e.Until == 0 || e.Until > span[0]) {
+				want = append(want, e)
+			}
+		}
+		slices.SortFunc(want, func(a, b Event) int { return cmp.Or(cmp.Compare(a.At, b.At), cmp.Compare(a.Number, b.Number)) })
+		if got := drain(t, s.Events(span[0], span[1])); !slices.Equal(got, want) {
+			t.Fatalf("Events(%v): %+v\nwant %+v", span, got, want)
+		}
 	}
 }
 

@@ -47,8 +47,8 @@ const (
 	// pieceMargin is what the tails leave free of a quarter page each, which is
 	// the most that bbolt keeps inside another page. With it the root's page has
 	// room for three tails, the greatest inline registers, and the rest, which
-	// takes 715 bytes: 715 + 3·(P/4 − 236) + P/4 − 16 = P − 9.
-	pieceMargin = 236
+	// takes 753 bytes: 753 + 3·(P/4 − 248) + P/4 − 16 = P − 7.
+	pieceMargin = 248
 
 	fileMode = 0o600
 )
@@ -70,7 +70,7 @@ func open(path string, o Options) (*Store, error) {
 	if err := create(path); err != nil {
 		return nil, err
 	}
-	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, beatAge: o.BeatAge, maxBytes: o.MaxBytes,
+	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, beatAge: o.BeatAge, maxBytes: o.MaxBytes, mostEvents: mostEvents,
 		groupBytes: defaultGroup, log: o.Log, newest: math.MinInt64, sealing: newSealer(1)}
 	if s.maxBytes <= 0 {
 		s.maxBytes = defaultBytes
@@ -240,7 +240,7 @@ func buckets(version uint32) [][]byte {
 		all = append(all, bucketTail(i))
 	}
 	if version > firstVersion {
-		all = append(all, bucketHours, bucketSealed)
+		all = append(all, bucketHours, bucketSealed, bucketEvents)
 	}
 	return all
 }
@@ -279,7 +279,7 @@ func layOut(tx *bolt.Tx) error {
 	}
 	// A bucket that holds a bucket is never laid into the root's page, where
 	// these would take the room of the tails.
-	for _, name := range [][]byte{bucketNames, bucketMinutes, bucketHours, bucketState} {
+	for _, name := range [][]byte{bucketNames, bucketMinutes, bucketHours, bucketEvents, bucketState} {
 		if _, err := tx.Bucket(name).CreateBucket(keyPlaceholder); err != nil {
 			return err
 		}

@@ -161,8 +161,15 @@ func survivor(t *testing.T, path string, image []byte, compare func(*testing.T, 
 // kept or lost. The file opens, passes bbolt's check, holds every batch whose commit had
 // returned and at most the one that was under way, whole, and takes new ones.
 func TestPowerCut(t *testing.T) {
-	t.Run("growing", func(t *testing.T) { testPowerCut(t, watched(t, false), testNumbered) })
+	t.Run("growing", func(t *testing.T) { testPowerCut(t, watched(t, false), testAll) })
 	t.Run("trimmed", func(t *testing.T) { testPowerCut(t, watched(t, true), testEnd) })
+}
+
+// testAll is testNumbered, and the events.
+func testAll(t *testing.T, s *Store, n uint64) {
+	t.Helper()
+	testNumbered(t, s, n)
+	testEvents(t, s, n)
 }
 
 // testEnd compares a history of which the beginning is gone: readings run without a

@@ -37,10 +37,11 @@ type Report struct {
 	Earlier int64
 	// Readings that are lost are counted where the name of their group or block is left.
 	Readings, LostReadings Tally
-	Minutes, Hours         Tally
+	Minutes, Hours, Events Tally
 	// LostMinutes are those that hours hold and that are not there, DamagedMinutes and
-	// DamagedHours the keys (up to eight loads each) whose records cannot be read.
-	LostMinutes, DamagedMinutes, DamagedHours Tally
+	// DamagedHours the keys (up to eight loads each) whose records cannot be read, and
+	// DamagedEvents those of events.
+	LostMinutes, DamagedMinutes, DamagedHours, DamagedEvents Tally
 	// Names, Registers and State tell whether these are saved. Without State the accounts
 	// go on from Registers, and the readings that came after its checkpoint count no more.
 	Names, Registers, State bool
@@ -50,15 +51,15 @@ type Report struct {
 
 // Whole tells whether nothing was lost.
 func (r *Report) Whole() bool {
-	return r.LostBatches.Count+r.LostReadings.Count+r.LostMinutes.Count+r.DamagedMinutes.Count+r.DamagedHours.Count+r.Unreadable == 0 &&
+	return r.LostBatches.Count+r.LostReadings.Count+r.LostMinutes.Count+r.DamagedMinutes.Count+r.DamagedHours.Count+r.DamagedEvents.Count+r.Unreadable == 0 &&
 		r.Names && r.Registers && r.State
 }
 
 // Salvage reads what can be read of the history in the file from, however damaged, and
 // writes it to a new history in the file to, which must not be there. from is not
 // changed. What passes its checksum is taken from the newest state of the file, then from
-// the state a commit before, and then from pages that neither leads to; of those minutes
-// and hours may be of an earlier state, and some may be there that retention had removed.
+// the state a commit before, and then from pages that neither leads to; of those minutes,
+// hours and events may be of an earlier state, and some may be there that retention had removed.
 // Batches are numbered anew, so that the new history has no gap. A page is read
 // once on each of these ways, so that the time is bounded by the size of the file, and memory
 // by its largest value. The error is about the files; damage is told by the Report.
@@ -115,13 +116,13 @@ type salvage struct {
 	trees   []*salvagedTree        // of the newest state and the one before
 	groups  [5]map[string][][]byte // by name: of the newest state, the one before, and of neither, see stray
 	unsure  bool                   // groups of the newest state may be missing without a trace
-	damaged map[string]bool        // keys of minutes and hours that were met damaged; in front m or h
+	damaged map[string]bool        // keys of minutes, hours and events that were met damaged; in front m, h or e
 	names   []byte                 // of no known bucket
 	batch   []keyed
 	bytes   int
 }
 
-// salvagedTree is what one state of the file holds beside minutes, hours and groups.
+// salvagedTree is what one state of the file holds beside minutes, hours, events and groups.
 type salvagedTree struct {
 	values map[string][]byte // by bucket and key
 	recent [][]byte          // the headers of the buckets in it
@@ -169,13 +170,13 @@ func (z *salvage) tree(root uint64) (err error) {
 		name := string(top.key)
 		tops++
 		defer func(before int64) {
-			if name == "minutes" || name == "hours" {
+			if name == "minutes" || name == "hours" || name == "events" {
 				ofRecords -= w.bad - before
 			}
 		}(w.bad)
 		w.bucket(top.value, func(e element) {
 			switch name {
-			case "minutes", "hours":
+			case "minutes", "hours", "events":
 				if !e.bucket {
 					keep(z.keyed(name, e))
 				}
@@ -252,8 +253,8 @@ func (z *salvage) strayNames(e element) {
 	}
 }
 
-// stray takes a minute or an hour whose bucket is not known. One that might be either is
-// left.
+// stray takes a minute, an hour or an event whose bucket is not known. One that might be a
+// minute or an hour is left.
 func (z *salvage) stray(e element) error {
 	_, notMinute := parseMinutes(nil, e.key, e.value, anyLoad)
 	_, notHour := parseHours(nil, e.key, e.value, anyLoad)
@@ -262,6 +263,9 @@ func (z *salvage) stray(e element) error {
 		return z.keyed("minutes", e)
 	case notHour == nil && notMinute != nil:
 		return z.keyed("hours", e)
+	}
+	if _, err := parseEvent(e.key, e.value); err == nil {
+		return z.keyed("events", e)
 	}
 	return nil
 }
@@ -274,15 +278,20 @@ func (z *salvage) group(whence int, e element) {
 	}
 }
 
-// keyed takes the minutes or hours under a key, if they can be read.
+// keyed takes the minutes, hours or event under a key, if they can be read.
 func (z *salvage) keyed(bucket string, e element) (err error) {
-	if bucket == "minutes" {
+	keyBytes := 12
+	switch bucket {
+	case "minutes":
 		_, err = parseMinutes(nil, e.key, e.value, anyLoad)
-	} else {
+	case "hours":
 		_, err = parseHours(nil, e.key, e.value, anyLoad)
+	default:
+		keyBytes = 16
+		_, err = parseEvent(e.key, e.value)
 	}
 	if err != nil {
-		if len(e.key) == 12 && len(z.damaged) < keysATrim {
+		if len(e.key) == keyBytes && len(z.damaged) < keysATrim {
 			z.damaged[bucket[:1]+string(e.key)] = true
 		}
 		return nil
@@ -336,14 +345,11 @@ func (z *salvage) hours() error {
 	return nil
 }
 
-// count counts minutes and hours, and the minutes that hours hold beyond those.
+// count counts minutes, hours and events, and the minutes that hours hold beyond those.
 func (z *salvage) count() error {
 	r := z.report
 	for key := range z.damaged {
-		lost := &r.DamagedMinutes
-		if key[0] == 'h' {
-			lost = &r.DamagedHours
-		}
+		lost := map[byte]*Tally{'m': &r.DamagedMinutes, 'h': &r.DamagedHours, 'e': &r.DamagedEvents}[key[0]]
 		at := keyTime([]byte(key[1:]))
 		lost.add(1, at, at)
 	}
@@ -361,6 +367,9 @@ func (z *salvage) count() error {
 					}
 				}
 			}
+		}
+		if err := z.countEvents(tx); err != nil {
+			return err
 		}
 		mark := z.hourMark(tx)
 		taken := int64(math.MinInt64)
@@ -381,4 +390,18 @@ func (z *salvage) count() error {
 		take(math.MaxInt64, true)
 		return putHourMark(tx, hourMark{math.MinInt64, mark.trimmed})
 	})
+}
+
+// countEvents counts the events, and goes on with their numbers.
+func (z *salvage) countEvents(tx *bolt.Tx) error {
+	bucket := tx.Bucket(bucketEvents)
+	last := uint64(0)
+	c := bucket.Cursor()
+	for k, v := c.Seek(keyFirstMinute); k != nil; k, v = c.Next() {
+		if e, err := parseEvent(k, v); err == nil {
+			z.report.Events.add(1, e.At, e.At)
+			last = max(last, e.Number)
+		}
+	}
+	return bucket.SetSequence(last)
 }

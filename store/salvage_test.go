@@ -64,6 +64,18 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 		}
 		minutes++
 	}
+	events := int64(0)
+	for e, err := range s.Events(math.MinInt64, math.MaxInt64) {
+		begun, _ := eventOf(e.Number)
+		ended, _ := eventOf(e.Number + 3)
+		if err != nil || e != begun && e != ended || e.Number > damageNumbers {
+			t.Fatalf("%+v, %v", e, err)
+		}
+		events++
+	}
+	if events != r.Events.Count {
+		t.Fatalf("%d events are there: %+v", events, r)
+	}
 	hours := 0
 	for h, err := range s.Hours(1, math.MinInt64, math.MaxInt64) {
 		if err != nil || h.Minutes > 60 || h.Minutes == 0 {
@@ -107,7 +119,7 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 func TestSalvageWhole(t *testing.T) {
 	_, whole, _ := sample(t)
 	r := salvaged(t, t.TempDir(), whole)
-	if !r.Whole() || r.Batches.Count != damageNumbers || r.Minutes.Count != damageNumbers || r.Readings.From != second || r.Readings.To != damageNumbers*second {
+	if !r.Whole() || r.Batches.Count != damageNumbers || r.Minutes.Count != damageNumbers || r.Events.Count != damageNumbers/11 || r.Readings.From != second || r.Readings.To != damageNumbers*second {
 		t.Errorf("%+v", r)
 	}
 }

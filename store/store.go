@@ -22,6 +22,7 @@ var (
 	bucketMinutes   = []byte("minutes")
 	bucketHours     = []byte("hours")
 	bucketSealed    = []byte("sealed")
+	bucketEvents    = []byte("events")
 	bucketRegisters = []byte("registers")
 	bucketState     = []byte("state")
 
@@ -53,7 +54,7 @@ type Options struct {
 	// MaxAge is how long readings and minutes are kept; 0 keeps them until
 	// MaxBytes is reached.
 	MaxAge time.Duration
-	// MaxHourAge is how long hours are kept; 0 keeps them until MaxBytes is reached.
+	// MaxHourAge is how long hours and events are kept; 0 keeps them until MaxBytes is reached.
 	MaxHourAge time.Duration
 	// BeatAge is how long beats are kept as such for Before, counted in event time; 0
 	// stands for one hour. Of older ones only the readings are kept, in less room.
@@ -79,6 +80,7 @@ type Store struct {
 	beatAge    time.Duration
 	log        *slog.Logger
 	maxBytes   int64
+	mostEvents int
 	piece      int // bytes that one tail bucket may hold
 	groupBytes int // size at which a group is closed
 
@@ -141,6 +143,11 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 	if len(b.Registers) > 0 {
 		if err := putRegisters(tx, b.Registers); err != nil {
 			return fmt.Errorf("registers: %w", err)
+		}
+	}
+	if len(b.Events) > 0 {
+		if err := putEvents(tx, b.Events); err != nil {
+			return fmt.Errorf("events: %w", err)
 		}
 	}
 	if b.Checkpoint != nil {

@@ -51,6 +51,9 @@ func upgradeTo(tx *bolt.Tx) error {
 	if _, err := hours.CreateBucket(keyPlaceholder); err != nil {
 		return err
 	}
+	if err := createEvents(tx); err != nil {
+		return err
+	}
 	if err := putHourMark(tx, unbuilt); err != nil {
 		return err
 	}
