@@ -113,7 +113,7 @@ func (l *ledger) makeRoom(now int64) bool {
 	if t == (store.Trimmed{}) {
 		return false
 	}
-	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "damaged", t.Damaged)
+	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "damaged", t.Damaged)
 	return true
 }
 
@@ -368,7 +368,7 @@ func (l *ledger) trim(now int64) error {
 		return err
 	}
 	if t != (store.Trimmed{}) {
-		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "damaged", t.Damaged, "bytes", l.store.Bytes())
+		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "damaged", t.Damaged, "bytes", l.store.Bytes())
 	}
 	return nil
 }
