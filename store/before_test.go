@@ -34,6 +34,7 @@ func testRecall(t *testing.T, s *Store, all []Beat, d time.Duration) {
 // closed group is in a block for longer than an hour, and the newest beats are in the
 // open group alone.
 func TestBeforeOfSlowTags(t *testing.T) {
+	t.Parallel()
 	path := filepath.Join(t.TempDir(), "history.db")
 	var all []Beat
 	at, alone := int64(1_760_000_000*second), 0

@@ -138,6 +138,7 @@ func TestHourOnce(t *testing.T) {
 // TestManyLoads reads minutes and hours of a few loads of a thousand, some of which do
 // not have every minute.
 func TestManyLoads(t *testing.T) {
+	t.Parallel()
 	s := newStore(t, Options{})
 	const start, minutes = 480_000 * hourNanos, 150
 	for minute := range int64(minutes) {
@@ -174,6 +175,7 @@ func TestManyLoads(t *testing.T) {
 // TestHoursOutliveMinutes trims minutes by age: their hours stay, also when a minute of
 // one comes again, and go by an age of their own.
 func TestHoursOutliveMinutes(t *testing.T) {
+	t.Parallel()
 	s := newStore(t, Options{MaxAge: 24 * time.Hour, MaxHourAge: 10 * 24 * time.Hour})
 	const from, days = 20_000 * day, 20
 	var removed Trimmed
@@ -207,6 +209,7 @@ func TestHoursOutliveMinutes(t *testing.T) {
 // TestHoursLast gives less room than two years of minutes need: minutes go, all
 // hours stay until there are no other minutes than those of the newest hour.
 func TestHoursLast(t *testing.T) {
+	t.Parallel()
 	s := newStore(t, Options{MaxBytes: 1 << 20})
 	const from, days = 20_000 * day, 40
 	for at := int64(from); at < from+days*day; at += 6 * hourNanos {

@@ -37,8 +37,9 @@ func TestSealKeepsUp(t *testing.T) {
 	for _, tt := range []struct {
 		what                   string
 		tags, seconds, commits int
-	}{{"blocks of the usual size", 300, 200, 24}, {"blocks as wide as their tags", 600, 100, 24}, {"blocks of the greatest size", 8000, 10, 36}} {
+	}{{"blocks of the usual size", 300, 200, 12}, {"blocks as wide as their tags", 600, 100, 14}, {"blocks of the greatest size", 8000, 10, 30}} {
 		t.Run(tt.what, func(t *testing.T) {
+			t.Parallel()
 			s := newStore(t, Options{BeatAge: time.Minute, MaxBytes: 1 << 30})
 			s.db.NoSync = true // nothing cuts the power
 			w := newDriftWalk(tt.tags, 1)
@@ -64,6 +65,7 @@ func TestSealKeepsUp(t *testing.T) {
 // TestSealShare adds up the work of making two blocks: what a commit is to do of it for
 // each reading it brings is a quarter more than that.
 func TestSealShare(t *testing.T) {
+	t.Parallel()
 	for _, tags := range []int{50, 600, 8000} {
 		s := newStore(t, Options{BeatAge: time.Second, MaxBytes: 1 << 30})
 		s.db.NoSync = true // nothing cuts the power

@@ -3,6 +3,7 @@ package store
 import (
 	"bytes"
 	"errors"
+	"flag"
 	"log/slog"
 	"math/rand/v2"
 	"os"
@@ -155,14 +156,23 @@ func survivor(t *testing.T, path string, image []byte, compare func(*testing.T, 
 	return n, errors.Join(err, s.Close())
 }
 
+// cutEvery is odd by default, so that the cuts fall on pages and meta pages in turn.
+var cutEvery = flag.Int("cutevery", 3, "TestPowerCut cuts once in so many epochs; 1 is all of them")
+
 // TestPowerCut shows what holds on a disk that keeps what was synced: file sizes are
 // taken to be kept, for bbolt syncs them by themselves, and a disk that answers a
 // sync before it is done is beyond any program. It cuts the power at any write: of what was not synced, each sector is
 // kept or lost. The file opens, passes bbolt's check, holds every batch whose commit had
 // returned and at most the one that was under way, whole, and takes new ones.
 func TestPowerCut(t *testing.T) {
-	t.Run("growing", func(t *testing.T) { testPowerCut(t, watched(t, false), testAll) })
-	t.Run("trimmed", func(t *testing.T) { testPowerCut(t, watched(t, true), testEnd) })
+	t.Run("growing", func(t *testing.T) {
+		t.Parallel()
+		testPowerCut(t, watched(t, false), testAll)
+	})
+	t.Run("trimmed", func(t *testing.T) {
+		t.Parallel()
+		testPowerCut(t, watched(t, true), testEnd)
+	})
 }
 
 // testAll is testNumbered, and the events.
@@ -188,37 +198,44 @@ func testEnd(t *testing.T, s *Store, n uint64) {
 func testPowerCut(t *testing.T, l *diskLog, compare func(*testing.T, *Store, uint64)) {
 	path := filepath.Join(t.TempDir(), "cut.db")
 	rng := rand.New(rand.NewPCG(11, 12))
-	image, last, between := bytes.Clone(l.begin), 0, 0
+	image, cuts, between := bytes.Clone(l.begin), 0, 0
 	for epoch, writes := range l.epochs {
-		// One cut in each epoch, at a write that is drawn; those before it may have
-		// reached the disk in any part.
-		cut := bytes.Clone(image)
-		chance := rng.Float64()
-		for i := range writes[:rng.IntN(len(writes)+1)] {
-			cut = writes[i].apply(cut, func() bool { return rng.Float64() < chance })
-		}
-		n, err := survivor(t, path, cut, compare)
-		if err != nil {
-			t.Fatalf("cut in epoch %d of %d (meta page: %v): %v", epoch, len(l.epochs), l.isMeta(epoch), err)
-		}
-		boltCheck(t, path)
-		if done := uint64(l.commits[epoch]); n < done || n > done+1 {
-			t.Fatalf("cut in epoch %d: the history ends with %d, commits had returned up to %d", epoch, n, done)
-		}
-		if n > uint64(l.commits[epoch]) {
-			between++
-		}
-		if epoch%10 == 0 {
-			goOn(t, path, n, compare)
+		if epoch%*cutEvery == 0 {
+			n, err := survivor(t, path, cutIn(writes, image, rng), compare)
+			if err != nil {
+				t.Fatalf("cut in epoch %d of %d (meta page: %v): %v", epoch, len(l.epochs), l.isMeta(epoch), err)
+			}
+			boltCheck(t, path)
+			if done := uint64(l.commits[epoch]); n < done || n > done+1 {
+				t.Fatalf("cut in epoch %d: the history ends with %d, commits had returned up to %d", epoch, n, done)
+			}
+			if n > uint64(l.commits[epoch]) {
+				between++
+			}
+			if cuts%9 == 0 { // odd as well
+				goOn(t, path, n, compare)
+			}
+			cuts++
 		}
 		for i := range writes {
 			image = writes[i].apply(image, kept)
 		}
-		last = epoch
 	}
-	if last < 700 || between < 20 {
-		t.Errorf("%d epochs, %d cuts kept a commit that had not returned", last+1, between)
+	t.Logf("%d cuts in %d epochs; %d kept a commit that had not returned", cuts, len(l.epochs), between)
+	if len(l.epochs) <= 700 || between < cuts/20 || between < 20 {
+		t.Errorf("%d epochs, %d of %d cuts kept a commit that had not returned", len(l.epochs), between, cuts)
 	}
+}
+
+// cutIn returns what is left of image by a cut at one of the writes, which is drawn; those
+// before it may have reached the disk in any part.
+func cutIn(writes []diskWrite, image []byte, rng *rand.Rand) []byte {
+	cut := bytes.Clone(image)
+	chance := rng.Float64()
+	for i := range writes[:rng.IntN(len(writes)+1)] {
+		cut = writes[i].apply(cut, func() bool { return rng.Float64() < chance })
+	}
+	return cut
 }
 
 // TestPowerCutAtUpgrade cuts the power while a file of the first layout is brought to this

@@ -2,6 +2,7 @@ package store
 
 import (
 	"bytes"
+	"flag"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -140,16 +141,19 @@ func TestSalvageFirstLayout(t *testing.T) {
 	testNumbered(t, openStore(t, to, Options{}), 600)
 }
 
+var damages = flag.Int("damages", 100, "how many damaged files TestSalvageDamage salvages; at least 50")
+
 // TestSalvageDamage damages files in a hundred places and ways: bits, runs of noise,
 // pages that are wiped or copied over others, and ends that are cut off.
 func TestSalvageDamage(t *testing.T) {
+	t.Parallel()
 	_, whole, size := sample(t)
 	used := len(strings.TrimRight(string(whole), "\x00"))
 	pages := used / size
 	rng := rand.New(rand.NewPCG(21, 22))
 	dir := t.TempDir()
 	lost, saved := 0, 0
-	const files = 100
+	files := *damages
 	for n := range files {
 		b := append([]byte{}, whole...)
 		var what string
@@ -183,8 +187,8 @@ func TestSalvageDamage(t *testing.T) {
 		}
 		saved += int(r.Batches.Count)
 	}
-	t.Logf("%d of %d files lost something; %.1f %% of the batches are saved", lost, files, 100*float64(saved)/files/damageNumbers)
-	if lost < files/5 || saved < files*2/3*damageNumbers {
+	t.Logf("%d of %d files lost something; %.1f %% of the batches are saved", lost, files, 100*float64(saved)/float64(files*damageNumbers))
+	if lost < files/5 || saved < files*damageNumbers*2/3 {
 		t.Errorf("%d of %d files lost something, %d batches are saved", lost, files, saved)
 	}
 }

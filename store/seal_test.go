@@ -33,6 +33,7 @@ func sealedGroups(t testing.TB, s *Store) (blocks, groups int) {
 // TestSeal commits two days with reopenings between: old groups become blocks, and
 // readings come as they were committed, whichever they lie in.
 func TestSeal(t *testing.T) {
+	t.Parallel()
 	path := filepath.Join(t.TempDir(), "history.db")
 	want := map[uint32][]Reading{}
 	w := newWalk(50)

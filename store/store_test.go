@@ -81,6 +81,7 @@ func plant(from int64, seconds, tags int) []Beat {
 // TestResume commits batches, some with a checkpoint, and finds after each
 // reopening the state and exactly the beats since.
 func TestResume(t *testing.T) {
+	t.Parallel()
 	path := filepath.Join(t.TempDir(), "history.db")
 	var since, before []Beat
 	var state string

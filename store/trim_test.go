@@ -63,10 +63,11 @@ func countReadings(t testing.TB, s *Store) (n int64, oldest int64) {
 	return n, oldest
 }
 
-// TestTrimByAge fills two months and keeps one.
+// TestTrimByAge fills four weeks and keeps ten days.
 func TestTrimByAge(t *testing.T) {
-	s := newStore(t, Options{MaxAge: 30 * 24 * time.Hour})
-	const from, days = 20_000 * day, 60
+	t.Parallel()
+	const from, days, keep = 20_000 * day, 28, 10
+	s := newStore(t, Options{MaxAge: keep * 24 * time.Hour})
 	removed := fill(t, s, from, from+days*day, 3, func(int64) {})
 	end := int64(from + days*day)
 	readings, oldest := countReadings(t, s)
@@ -74,39 +75,50 @@ func TestTrimByAge(t *testing.T) {
 		t.Errorf("%d readings kept, %d removed; want %d together", readings, removed.Readings, want)
 	}
 	// A group holds half a day or so of these.
-	if oldest < end-32*day || oldest > end-30*day {
-		t.Errorf("the oldest reading is %.2f days old, want 30 to 32", float64(end-oldest)/day)
+	if oldest < end-(keep+2)*day || oldest > end-keep*day {
+		t.Errorf("the oldest reading is %.2f days old, want %d to %d", float64(end-oldest)/day, keep, keep+2)
 	}
 	minutes := drain(t, s.Minutes(0, math.MinInt64, math.MaxInt64))
-	if len(minutes) != 30*1440 || minutes[0].Start != end-30*day {
-		t.Errorf("%d minutes, the oldest %.2f days old; want 30 days of them", len(minutes), float64(end-minutes[0].Start)/day)
+	if len(minutes) != keep*1440 || minutes[0].Start != end-keep*day {
+		t.Errorf("%d minutes, the oldest %.2f days old; want %d days of them", len(minutes), float64(end-minutes[0].Start)/day, keep)
 	}
-	if want := int64((days - 30) * 1440 * 3); removed.Minutes != want {
+	if want := int64((days - keep) * 1440 * 3); removed.Minutes != want {
 		t.Errorf("%d minutes removed, want %d", removed.Minutes, want)
 	}
 }
 
 // TestTrimByBytes fills ten weeks: the bound holds after every trim, the file is
 // not much longer, and readings go before minutes.
+//
+// How much longer is left to chance: bbolt cuts what it needs off any run of free pages
+// that is long enough, not the first or the shortest, and so may leave none for a block.
+// In 27 turns the pages came to 1.08 to 1.15 of the bound. The file itself is up to
+// growBytes longer, which is another ninth of so small a bound.
 func TestTrimByBytes(t *testing.T) {
+	t.Parallel()
 	const bound = 9 << 20
 	path := filepath.Join(t.TempDir(), "history.db")
 	s := openStore(t, path, Options{MaxBytes: bound})
+	s.db.NoSync = true // nothing cuts the power
 	const from, days = 20_000 * day, 70
 	worst := int64(0)
 	removed := fill(t, s, from, from+days*day, 1, func(at int64) {
 		if s.Bytes() > bound {
 			t.Fatalf("day %d: %d bytes in use, bound %d", (at-from)/day, s.Bytes(), bound)
 		}
-		info, err := os.Stat(path)
+		pages, _, err := usage(s.db)
 		if err != nil {
 			t.Fatal(err)
 		}
-		worst = max(worst, info.Size())
+		worst = max(worst, pages)
+		step := int64(growBytes + s.db.Info().PageSize)
+		if info, err := os.Stat(path); err != nil || info.Size() > worst+step {
+			t.Fatalf("day %d: the file is %+v, want at most %d bytes more than the %d of its pages (%v)", (at-from)/day, info, step, worst, err)
+		}
 	})
-	t.Logf("the file grew to %.2f of its bound", float64(worst)/bound)
+	t.Logf("the pages of the file grew to %.2f of its bound", float64(worst)/bound)
 	if worst > bound*5/4 {
-		t.Errorf("the file grew to %d bytes, bound %d", worst, bound)
+		t.Errorf("the pages of the file grew to %d bytes, bound %d", worst, bound)
 	}
 	readings, _ := countReadings(t, s)
 	if readings == 0 || removed.Readings == 0 {
@@ -120,6 +132,7 @@ func TestTrimByBytes(t *testing.T) {
 
 // TestTrimMinutesLast gives less room than the minutes need.
 func TestTrimMinutesLast(t *testing.T) {
+	t.Parallel()
 	const bound = 3 << 20
 	s := newStore(t, Options{MaxBytes: bound})
 	const from, days = 20_000 * day, 30
@@ -163,15 +176,17 @@ func TestTrimKeepsReplay(t *testing.T) {
 // TestCompact removes nearly all and opens again: the file is short, and the rest
 // is there.
 func TestCompact(t *testing.T) {
+	t.Parallel()
 	path := filepath.Join(t.TempDir(), "history.db")
 	s, err := Open(path, Options{})
 	if err != nil {
 		t.Fatal(err)
 	}
-	const from = 20_000 * day
-	fill(t, s, from, from+50*day, 3, func(int64) {})
+	s.db.NoSync = true // nothing cuts the power
+	const from, days = 20_000 * day, 36
+	fill(t, s, from, from+days*day, 3, func(int64) {})
 	s.maxAge = 24 * time.Hour
-	if _, err := s.Trim(from + 90*day); err != nil {
+	if _, err := s.Trim(from + 2*days*day); err != nil {
 		t.Fatal(err)
 	}
 	before := contents(t, s)
@@ -185,6 +200,7 @@ func TestCompact(t *testing.T) {
 	var log strings.Builder
 	s = openStore(t, path, Options{Log: slog.New(slog.NewTextHandler(&log, nil))})
 	short, err := os.Stat(path)
+	t.Logf("%d bytes after compaction, %d before", short.Size(), long.Size())
 	if err != nil || short.Size() > long.Size()/4 || short.Size() > 4<<20 {
 		t.Errorf("%d bytes after compaction, %d before (%v)", short.Size(), long.Size(), err)
 	}
@@ -194,7 +210,7 @@ func TestCompact(t *testing.T) {
 	if after := contents(t, s); after != before {
 		t.Errorf("after compaction %+v, before %+v", after, before)
 	}
-	commit(t, s, Batch{Beats: plant(from+50*day, 3600, 50)})
+	commit(t, s, Batch{Beats: plant(from+days*day, 3600, 50)})
 }
 
 type content struct {
@@ -224,6 +240,7 @@ func contents(t *testing.T, s *Store) (c content) {
 // batch and goes on after a Trim, again and again, with all that is newer than
 // the oldest kept.
 func TestFull(t *testing.T) {
+	t.Parallel()
 	s := newStore(t, Options{MaxBytes: 1 << 40, MaxFile: 3 << 20})
 	full := 0
 	for n := uint64(1); n <= 1000 || full < 3; n++ {
