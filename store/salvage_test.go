@@ -57,13 +57,17 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 			last = max(last, n)
 		}
 	}
-	minutes := int64(0)
+	trimmed := trimmedUntil(t, s)
+	minutes, untold := int64(0), max(0, trimmed/(60*second)-1)
 	for m, err := range s.Minutes(1, math.MinInt64, math.MaxInt64) {
 		n := float64(m.Start / (60 * second))
 		if err != nil || n < 1 || n > damageNumbers || m.Given != n || m.Duty != n {
 			t.Fatalf("%+v, %v", m, err)
 		}
 		minutes++
+		if m.Start < trimmed {
+			untold--
+		}
 	}
 	events := int64(0)
 	for e, err := range s.Events(math.MinInt64, math.MaxInt64) {
@@ -87,8 +91,11 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 	if readings != r.Readings.Count || minutes != r.Minutes.Count {
 		t.Fatalf("%d readings and %d minutes are there: %+v", readings, minutes, r)
 	}
-	if all := minutes + r.LostMinutes.Count; r.Hours.Count == 10 && (all < 599 || all > 600) {
-		t.Fatalf("%d minutes are saved or told as lost: %+v", all, r)
+	if trimmed > 0 && r.Unreadable == 0 {
+		t.Fatalf("minutes are taken to be trimmed, and the file for sound: %+v", r)
+	}
+	if all := minutes + r.LostMinutes.Count + untold; r.Hours.Count == 10 && (all < 599 || all > 600) {
+		t.Fatalf("%d minutes are saved, told as lost or taken to be trimmed: %+v", all, r)
 	}
 	if kept := r.Earlier + r.Batches.Count + r.LostBatches.Count; kept > damageNumbers || last == damageNumbers && kept != damageNumbers {
 		t.Fatalf("%d batches up to number %d are told: %+v", kept, last, r)
@@ -114,6 +121,24 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 	if err := s.Commit(Batch{Beats: []Beat{{Through: 1e15}}, Minutes: []Minute{{Load: 1, Start: 1e15}}, Registers: registers, Checkpoint: []byte{}}); err != nil {
 		t.Fatalf("commit: %v", err)
 	}
+}
+
+// trimmedUntil returns when the minutes begin that s does not take to be trimmed, or
+// something negative where it takes none to be. No numbered history is trimmed, but when
+// the mark is lost that tells so, those before the first that is saved are taken to be.
+func trimmedUntil(t *testing.T, s *Store) (at int64) {
+	t.Helper()
+	err := s.db.View(func(tx *bolt.Tx) error {
+		mark, ok := readHourMark(tx)
+		if at = mark.trimmed; !ok {
+			t.Error("what was salvaged has no mark of its hours")
+		}
+		return nil
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return at
 }
 
 // TestSalvageWhole salvages a sound file: all is there.
