@@ -17,13 +17,15 @@ const wholeMinute = 54 * time.Second
 // accounts are the engine and the judges of one plant, moved forward together a
 // beat at a time by one goroutine.
 type accounts struct {
-	cfg    loads.Config
-	rules  [32]byte
-	byLoad [][32]byte // see rulesOfLoad
-	kept   []bool     // loads that the restored state had accounts of
-	engine *loads.Engine
-	judges []*design.Judge
-	closed []loads.Minute
+	cfg        loads.Config
+	rules      [32]byte
+	file       [32]byte   // digest of the site file
+	byLoad     [][32]byte // see rulesOfLoad
+	fileBefore [32]byte   // of the restored state; zero where it is not known
+	kept       []bool     // loads that the restored state had accounts of
+	engine     *loads.Engine
+	judges     []*design.Judge
+	closed     []loads.Minute
 
 	site, zone string            // name of the plant, and time zone of its reports
 	units      map[string]string // SI unit of the readings of each tag, or changedUnit
@@ -36,7 +38,7 @@ func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*acc
 	if err != nil {
 		return nil, err
 	}
-	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), engine: engine}
+	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), file: site, engine: engine}
 	for i := range cfg.Loads {
 		a.byLoad = append(a.byLoad, rulesOfLoad(&cfg, i))
 	}
@@ -75,6 +77,7 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 // load.
 type savedAccounts struct {
 	Rules  [32]byte            // that the accounts were kept by; see rulesOf
+	File   [32]byte            // digest of the site file
 	Loads  map[string][32]byte // those of each load; see rulesOfLoad
 	Engine []byte
 	Judges map[string]savedJudge
@@ -94,7 +97,7 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Rules: a.rules, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges)), Loads: make(map[string][32]byte, len(a.judges))}
+	s := savedAccounts{Rules: a.rules, File: a.file, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges)), Loads: make(map[string][32]byte, len(a.judges))}
 	for i, j := range a.judges {
 		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
 		s.Loads[a.cfg.Loads[i].Name] = a.byLoad[i]
@@ -121,6 +124,7 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 			j.Restore(was.Last, was.Minutes)
 		}
 	}
+	a.fileBefore = s.File
 	a.keepUnits(s.Units)
 	if err := a.engine.Restore(s.Engine); err != nil {
 		return false, err

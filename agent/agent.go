@@ -99,7 +99,7 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err := forgetAddress(a.o.Data); err != nil {
 		return err
 	}
-	books, err := openLedger(a.site, db, a.o.Log, time.Now())
+	books, err := openLedger(a.site, db, a.o, time.Now())
 	if err != nil {
 		return err
 	}

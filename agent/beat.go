@@ -163,6 +163,7 @@ func (a *Agent) beat(r *rhythm, system time.Time) {
 // acknowledged.
 func (a *Agent) last(r *rhythm) error {
 	a.take(r)
+	r.books.happened(eventStopped, "heatreeve "+a.o.Version+" stopped with all committed")
 	if !a.commit(r, time.Now(), true) {
 		return fmt.Errorf("last commit: %s", r.books.fault)
 	}
@@ -191,6 +192,9 @@ func (a *Agent) put(r *rhythm) {
 	if a.clock != nil {
 		_, shifted := a.clock.state()
 		r.pace.shift(shifted - r.shifted)
+		if by := shifted - r.shifted; by != 0 {
+			r.books.happened(eventClock, fmt.Sprintf("the clock of this machine was set by %v, and its new setting is followed", by.Round(time.Millisecond)))
+		}
 		r.shifted = shifted
 	}
 	r.received = a.session.Take(r.received[:0])

@@ -327,7 +327,7 @@ func TestUnitsOutliveTheirTags(t *testing.T) {
 			extra.Name = name
 			s.Tags = append(s.Tags, extra)
 		}
-		l, err := openLedger(s, db, slog.New(slog.DiscardHandler), week)
+		l, err := openLedger(s, db, Options{Log: slog.New(slog.DiscardHandler)}, week)
 		if err != nil {
 			t.Fatal(err)
 		}

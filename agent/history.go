@@ -55,6 +55,7 @@ func (h *history) report(ctx context.Context, q Query) (*Report, error) {
 	if err := h.fill(ctx, r, q, plan, ids, chosen); err != nil {
 		return nil, err
 	}
+	h.addEvents(r, plan)
 	return r, h.addRegisters(r, ids, plan)
 }
 

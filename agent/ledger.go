@@ -49,16 +49,25 @@ type ledger struct {
 	lostMinutes uint64
 	failures    uint64
 	fault       string
+	diary       diary
 }
 
-// openLedger takes up the accounts where the history left them.
-func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) (*ledger, error) {
+// openLedger takes up the accounts where the history left them; now is by the system's
+// clock. Of o it wants the log, the version and the clock; without that, now stands still.
+func openLedger(s *site.Site, db *store.Store, o Options, now time.Time) (*ledger, error) {
 	a, err := newAccounts(plantOf(s), targetsOf(s), s.Digest)
 	if err != nil {
 		return nil, err
 	}
 	a.site, a.zone, a.units = s.Name, s.Zone.String(), unitsOf(s)
-	l := &ledger{accounts: a, store: db, write: db.Commit, log: log, saved: now}
+	l := &ledger{accounts: a, store: db, write: db.Commit, log: o.Log, saved: now}
+	clock := o.Now
+	if clock == nil {
+		clock = func() time.Time { return now }
+	}
+	if l.diary, err = newDiary(db, clock); err != nil {
+		return nil, err
+	}
 	if l.tagIDs, err = l.number("tag", names(s.Tags, func(t site.Tag) string { return t.Name })); err != nil {
 		return nil, err
 	}
@@ -69,6 +78,7 @@ func openLedger(s *site.Site, db *store.Store, log *slog.Logger, now time.Time) 
 		return nil, fmt.Errorf("resume the accounts: %w", err)
 	}
 	l.committed, l.aged = l.registers(), l.accounts.engine.Through()
+	l.happened(eventStarted, fmt.Sprintf("heatreeve %s, site file %s", o.Version, shortDigest(s.Digest)))
 	if err := l.first(now); err != nil {
 		return nil, err
 	}
@@ -151,7 +161,9 @@ func (l *ledger) resume() error {
 	l.take(known)
 	if !ok { // as a salvaged history may be: there is nothing but registers and the beats
 		if len(known) > 0 {
-			l.log.Warn("the history has no state of the accounts: they go on from the registers as last committed, and the time since then is missing")
+			const text = "the history has no state of the accounts: they go on from the registers as last committed, and the time since then is missing"
+			l.log.Warn(text)
+			defer l.happened(eventState, text)
 		}
 		return l.replay(true)
 	}
@@ -169,6 +181,7 @@ func (l *ledger) resume() error {
 		return err
 	}
 	l.accounts.lapse(begun)
+	l.happened(eventRules, rulesChanged(l.accounts.fileBefore, l.accounts.file))
 	return nil
 }
 
@@ -293,9 +306,11 @@ func (l *ledger) bound() {
 		l.lost += uint64(n)
 		l.batch.Beats = l.batch.Beats[1:]
 		l.forced = true
+		l.outageFrom("")
 	}
 	if n := len(l.batch.Minutes) - maxMinutes; n > 0 {
 		l.lostMinutes += uint64(n)
+		l.outageFrom("")
 		l.batch.Minutes = l.batch.Minutes[n:]
 	}
 }
@@ -320,6 +335,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 		}
 		l.batch.Checkpoint = state
 	}
+	l.batch.Events = l.events()
 	if err := l.write(l.batch); err != nil {
 		l.fail(err)
 		return err
@@ -329,6 +345,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	}
 	l.committed, l.booked, l.fault, l.waiting = registers, through, "", 0
 	l.through.Store(through)
+	l.told()
 	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
 	return nil
 }
@@ -349,6 +366,7 @@ func (l *ledger) fail(err error) {
 		l.log.Error("history is not written; the agent goes on and tries again", "error", err)
 	}
 	l.fault = err.Error()
+	l.outageFrom(l.fault)
 }
 
 // age is the event time by which the history is trimmed. It follows a leap slowly: one of

@@ -54,7 +54,7 @@ func open(t *testing.T, s *site.Site, path string, o store.Options) (l *ledger, 
 	if err != nil {
 		t.Fatal(err)
 	}
-	l, err = openLedger(s, db, slog.New(slog.DiscardHandler), clock)
+	l, err = openLedger(s, db, Options{Log: slog.New(slog.DiscardHandler)}, clock)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -456,7 +456,7 @@ func TestLedgerTellsOfOtherRules(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		if _, err := openLedger(parsed(t, tt.text), db, slog.New(slog.NewTextHandler(&log, nil)), clock); err != nil {
+		if _, err := openLedger(parsed(t, tt.text), db, Options{Log: slog.New(slog.NewTextHandler(&log, nil))}, clock); err != nil {
 			t.Error(err)
 		}
 		if err := db.Close(); err != nil {

@@ -27,6 +27,7 @@ type Report struct {
 	Accounted time.Time    `json:"accounted_to"`
 	Loads     []LoadReport `json:"loads"`
 	Notes     []string     `json:"notes,omitempty"`
+	Events    []Event      `json:"events,omitempty"`
 	// Unused is how many records cannot be used, and are missing.
 	Unused int `json:"records_not_used,omitempty"`
 }

@@ -9,6 +9,7 @@ import (
 	"net/http"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -116,8 +117,28 @@ func TestDemoPlantAndRestart(t *testing.T) {
 	if err != nil || before.IsZero() {
 		t.Fatalf("event time %v, %v", before, err)
 	}
+	checkEvents(t, data, "started stopped")
 	if second := session(t, data, first); second <= first {
 		t.Errorf("hot water ends at %g J after a restart, began at %g J", second, first)
+	}
+	checkEvents(t, data, "started started stopped stopped")
+}
+
+// checkEvents looks at the starts and stops in a report from data. They are sorted, for a
+// demo begins again before its clock has come to the end.
+func checkEvents(t *testing.T, data, want string) {
+	t.Helper()
+	r, err := agent.Inquire(t.Context(), data, agent.Query{From: "2000-01", By: "month"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	var got []string
+	for _, e := range r.Events {
+		got = append(got, e.Kind)
+	}
+	slices.Sort(got)
+	if text := strings.Join(got, " "); text != want {
+		t.Errorf("events %q, want %q", text, want)
 	}
 }
 
@@ -152,6 +173,9 @@ func session(t *testing.T, data string, from float64) float64 {
 	})
 	checkTruth(t, d, s)
 	checkPage(t, r, s)
+	if from == 0 {
+		checkEvents(t, data, "started") // of an agent that runs
+	}
 	cancel()
 	if err := errors.Join(<-published, r.stop()); err != nil {
 		t.Error(err)

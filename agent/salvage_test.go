@@ -48,7 +48,7 @@ func TestLedgerAfterASalvage(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		l, err := openLedger(s, db, slog.New(slog.NewTextHandler(&log, nil)), clock)
+		l, err := openLedger(s, db, Options{Log: slog.New(slog.NewTextHandler(&log, nil))}, clock)
 		if err != nil {
 			t.Fatal(err)
 		}

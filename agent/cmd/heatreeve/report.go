@@ -25,9 +25,12 @@ both without it, json the inputs too.
 
 Heat that was bridged is told apart, and in no other figure; missing time has no
 heat in it. By day and by month the peak demand is that of 15 minutes. csv has
-no line of totals, and its notes go to stderr. A load whose name a spreadsheet
-would take for a formula (= + - @ first) has an apostrophe before it in csv. A
-report that had to leave out damaged records ends with status 1.
+no line of totals, and its notes and events go to stderr. A load whose name a
+spreadsheet would take for a formula (= + - @ first) has an apostrophe before it
+in csv. A report that had to leave out damaged records ends with status 1.
+
+What happened beside the accounts stands last: starts and stops, another site
+file, a disk that took nothing, readings given up, a clock that was set, damage.
 `
 
 // details are what a report may show beyond its usual columns.
@@ -98,6 +101,9 @@ func tellReport(w io.Writer, r *agent.Report, format string) error {
 	if format == "csv" {
 		for _, note := range r.Notes {
 			fmt.Fprintln(w, "note:", note)
+		}
+		for i := range r.Events {
+			fmt.Fprintln(w, "event:", eventLine(&r.Events[i]))
 		}
 	}
 	if r.Unused > 0 {

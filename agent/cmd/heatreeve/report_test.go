@@ -73,7 +73,13 @@ func rich(by string, demand float64) *agent.Report {
 		return p
 	}
 	l := agent.LoadReport{Load: "coil", Periods: []agent.PeriodReport{period(0, 24), period(24, 48)}, Total: period(0, 48), Register: &agent.Register{Given: 5e11, Bridged: 12000, BridgedGiven: 1.44e10}}
-	return &agent.Report{Zone: "Etc/GMT-1", By: by, From: at(0), To: at(48), Accounted: at(48), Demand: demand, Factor: 2, Loads: []agent.LoadReport{l}}
+	start, end := at(5), at(7)
+	events := []agent.Event{
+		{At: start, Until: &start, Kind: "started", Text: "heatreeve 1.0"},
+		{At: start, Until: &end, Kind: "disk", Text: "the disk took nothing: " + strings.Repeat("no room ", 20)},
+		{At: end, Kind: "silent", Subject: "TT-1", Text: "no reading"},
+	}
+	return &agent.Report{Zone: "Etc/GMT-1", By: by, From: at(0), To: at(48), Accounted: at(48), Demand: demand, Factor: 2, Loads: []agent.LoadReport{l}, Events: events}
 }
 
 // What is bridged or latent, a witness and the shares have their place, within 100 columns.
@@ -89,6 +95,7 @@ func TestReportTableOfAllThereIs(t *testing.T) {
 				"\n bridged 1:40:00 2.0 0\n", "\n latent 2:01:40\n", " 30.0 1.0 1.0 92.0 % 0:06:40 480.0 ",
 				" counted served deviation\n MWh MWh\n", " 28.0 28.4 +1.25 %\n", "\nuncertainty ±2u systematic random shares\n",
 				" 1.00 1.00 0.03 outlet pressure 62 %, heat capacity 30 %\n", "; bridged 4.0 MWh given, 0 MWh taken.", "\nBridged: ", "\nLatent: ", "\nWitness: ", "\nShares: ",
+				"\nWhat happened:\n 2026-10-24 05:00 +01:00, started: heatreeve 1.0\n 2026-10-24 05:00 +01:00 to 2026-10-24 07:00 +01:00, disk: the disk took", "\n 2026-10-24 07:00 +01:00 on, silent of TT-1: no reading\n",
 			} {
 				if !strings.Contains(text, want) {
 					t.Errorf("by %s: %q is not in\n%s", by, want, b.String())
@@ -316,11 +323,13 @@ func TestReadmeNamesTheReportKeys(t *testing.T) {
 	}
 	have := map[string]bool{"notes": true, "records_not_used": true} // of a damaged history
 	gather(have, any)
-	witness, err := json.Marshal(agent.PeriodReport{Witness: new(agent.Witness)})
-	if err != nil || json.Unmarshal(witness, &any) != nil {
-		t.Fatal(err)
+	for _, part := range []interface{}{agent.Report{Events: []agent.Event{{}}}, agent.PeriodReport{Witness: new(agent.Witness)}} {
+		told, err := json.Marshal(part)
+		if err != nil || json.Unmarshal(told, &any) != nil {
+			t.Fatal(err)
+		}
+		gather(have, any)
 	}
-	gather(have, any)
 	for key := range have {
 		if !strings.Contains(list, "`"+key+"`") {
 			t.Errorf("the README does not tell of %q", key)
@@ -343,6 +352,22 @@ func gather(keys map[string]bool, v any) {
 	case []any:
 		for _, x := range v {
 			gather(keys, x)
+		}
+	}
+}
+
+// What happened is on stderr where the report is csv.
+func TestReportCSVTellsEvents(t *testing.T) {
+	var b strings.Builder
+	if err := tellReport(&b, rich("day", 0), "csv"); err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{
+		"event: 2026-10-24 05:00 +01:00, started: heatreeve 1.0\n",
+		"event: 2026-10-24 07:00 +01:00 on, silent of TT-1: no reading\n",
+	} {
+		if !strings.Contains(b.String(), want) {
+			t.Errorf("%q is not in\n%s", want, b.String())
 		}
 	}
 }

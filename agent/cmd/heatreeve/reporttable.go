@@ -51,8 +51,11 @@ func reportTable(w io.Writer, r *agent.Report, d details) error {
 	if r.To.After(r.Accounted) {
 		fmt.Fprintf(w, "The history is accounted for up to %s.\n", clockTime(r.Accounted))
 	}
-	_, err := io.WriteString(w, legend(r, d))
-	return err
+	if _, err := io.WriteString(w, legend(r, d)); err != nil {
+		return err
+	}
+	reportEvents(w, r.Events)
+	return nil
 }
 
 // legend tells what the columns are that the tables have.
