@@ -231,3 +231,29 @@ func TestReportHasEvents(t *testing.T) {
 		}
 	}
 }
+
+// A clock that was set, and is followed, is told once, with by how much.
+func TestSetClockIsTold(t *testing.T) {
+	m := newMachine()
+	s := parsed(t, benchSite)
+	session, err := newSession(s, Options{Log: slog.New(slog.DiscardHandler)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	a := &Agent{site: s, clock: m.stepless, session: session, o: Options{Now: m.Now, Log: slog.New(slog.DiscardHandler)}}
+	l, shut := openAt(t, s, filepath.Join(t.TempDir(), "h.db"), m.Now)
+	defer shut()
+	r := &rhythm{pace: newPace(len(s.Tags), s.Timing.Lateness, s.Timing.Commit, hasStamps(s)), books: l, late: make([]bool, len(s.Tags))}
+	m.pass(settling)
+	m.offset = time.Hour
+	for range 400 {
+		m.pass(time.Second)
+		a.put(r)
+	}
+	if err := l.commit(clock, true); err != nil {
+		t.Fatal(err)
+	}
+	if got := ofKind(toldEvents(t, l), eventClock); len(got) != 1 || !strings.Contains(got[0], "set by 1h0m0s") {
+		t.Errorf("%q", got)
+	}
+}

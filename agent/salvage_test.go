@@ -55,6 +55,9 @@ func TestLedgerAfterASalvage(t *testing.T) {
 		if told := strings.Contains(log.String(), "no state of the accounts"); told != (r.Names && r.Registers && !r.State) {
 			t.Errorf("page %d wiped: the log says %q of %+v", page, &log, r)
 		}
+		if events := ofKind(toldEvents(t, l), eventState); len(events) > 1 || (len(events) == 1) != strings.Contains(log.String(), "no state of the accounts") {
+			t.Errorf("page %d wiped: events %q", page, events)
+		}
 		got := l.registers()[0].Given
 		if r.Names && (r.Registers || r.State) && got != last && got != totals[len(totals)-2] || got > last {
 			t.Errorf("page %d wiped: %g J, want %g; %+v", page, got, last, r)
