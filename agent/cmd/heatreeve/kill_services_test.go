@@ -20,6 +20,8 @@ import (
 	"time"
 
 	mqtt "github.com/eclipse/paho.mqtt.golang"
+
+	"heatreeve/agent"
 )
 
 // mixed is a plant with a load of each kind: by flow rate with gaps that are bridged, by
@@ -272,7 +274,50 @@ func (a *agentUnderTest) accounts(t *testing.T, load string) (minutes, report st
 		}
 		return string(text)
 	}
-	return out("export"), out("report", "--by", "hour", "--from", "2020-01-01")
+	return out("export"), apart(t, out("report", "--by", "hour", "--from", "2020-01-01"), &a.events)
+}
+
+// apart takes the events out of a report, which are those of the agent's own life.
+func apart(t *testing.T, text string, events *[]agent.Event) string {
+	t.Helper()
+	var r agent.Report
+	if err := json.Unmarshal([]byte(text), &r); err != nil {
+		t.Fatal(err)
+	}
+	*events = r.Events
+	var all map[string]any
+	if err := json.Unmarshal([]byte(text), &all); err != nil {
+		t.Fatal(err)
+	}
+	delete(all, "events")
+	rest, err := json.Marshal(all)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(rest)
+}
+
+// checkEvents looks at the events of an agent that was started, killed and stopped so often:
+// none is there twice, and there is none but starts and stops. Which of these there are hangs
+// on whether the agent had opened its history before it was ended.
+func checkEvents(t *testing.T, events []agent.Event, kills, stops int) {
+	t.Helper()
+	seen := map[string]int{}
+	counts := map[string]int{}
+	for _, e := range events {
+		counts[e.Kind]++
+		if key := fmt.Sprint(e.Kind, e.At.UnixNano()); seen[key] > 0 {
+			t.Errorf("twice: %+v", e)
+		} else {
+			seen[key]++
+		}
+	}
+	starts := counts["started"]
+	stopped := counts["stopped"]
+	if stopped < (stops+1)/2 || stopped > stops || starts < stopped || starts > kills+stops || len(events) != starts+stopped {
+		t.Errorf("events %v after %d kills and %d stops", counts, kills, stops)
+	}
+	t.Logf("events %v after %d kills and %d stops", counts, kills, stops)
 }
 
 // heatOf adds up the minutes of an export.
@@ -362,6 +407,9 @@ func TestTwoHundredKills(t *testing.T) {
 				t.Errorf("%s: report differs\n%s\nwant\n%s", load, r, report)
 			}
 		}
+	}
+	for _, v := range victims { // with the kill at the beginning and the stop at the end
+		checkEvents(t, v.events, v.kills+1, v.stops+1)
 	}
 	said := b.out.String()
 	for i, id := range []string{"hit", "mixed"} {

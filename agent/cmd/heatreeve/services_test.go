@@ -19,6 +19,8 @@ import (
 	"sync"
 	"testing"
 	"time"
+
+	"heatreeve/agent"
 )
 
 // patience is how long a test waits for what ought to take a moment.
@@ -231,6 +233,7 @@ type agentUnderTest struct {
 	*process
 	site, data string
 	address    string
+	events     []agent.Event // of the last report
 }
 
 // site writes a site file for the broker; %PORT% stands for its port.
