@@ -72,16 +72,12 @@ func appendHour(b []byte, h Hour) []byte {
 
 // parseHours adds to all the hours under one key, of the loads that are wanted.
 func parseHours(all []Hour, key, value []byte, want func(load uint32) bool) ([]Hour, error) {
-	n := len(value) - 4
-	if len(key) != 12 || n < 0 || binary.LittleEndian.Uint32(value[n:]) != checksum(key, value[:n]) {
+	first, p, ok := recordsOf(key, value)
+	if !ok {
 		return all, errRecord
 	}
-	block := binary.BigEndian.Uint32(key[8:])
-	if block > math.MaxUint32/loadsAKey {
-		return all, errRecord
-	}
-	for p := (parser{rest: value[:n]}); len(p.rest) > 0; {
-		all = append(all, Hour{Start: keyTime(key), Load: block * loadsAKey})
+	for len(p.rest) > 0 {
+		all = append(all, Hour{Start: keyTime(key), Load: first})
 		h := &all[len(all)-1]
 		p.hour(h, want)
 		if p.bad || !want(h.Load) {

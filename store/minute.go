@@ -100,18 +100,26 @@ func appendMinute(b []byte, m Minute) []byte {
 
 func anyLoad(uint32) bool { return true }
 
-// parseMinutes adds to all the minutes under one key, of the loads that are wanted.
-func parseMinutes(all []Minute, key, value []byte, want func(load uint32) bool) ([]Minute, error) {
+// recordsOf checks the key and the value of minutes or hours, and returns the first load
+// that the key may hold and a parser of the records. It is not ok where the checksum
+// does not fit.
+func recordsOf(key, value []byte) (first uint32, p parser, ok bool) {
 	n := len(value) - 4
 	if len(key) != 12 || n < 0 || binary.LittleEndian.Uint32(value[n:]) != checksum(key, value[:n]) {
-		return all, errRecord
+		return 0, p, false
 	}
 	block := binary.BigEndian.Uint32(key[8:])
-	if block > math.MaxUint32/loadsAKey {
+	return block * loadsAKey, parser{rest: value[:n]}, block <= math.MaxUint32/loadsAKey
+}
+
+// parseMinutes adds to all the minutes under one key, of the loads that are wanted.
+func parseMinutes(all []Minute, key, value []byte, want func(load uint32) bool) ([]Minute, error) {
+	first, p, ok := recordsOf(key, value)
+	if !ok {
 		return all, errRecord
 	}
-	for p := (parser{rest: value[:n]}); len(p.rest) > 0; {
-		all = append(all, Minute{Start: keyTime(key), Load: block * loadsAKey})
+	for len(p.rest) > 0 {
+		all = append(all, Minute{Start: keyTime(key), Load: first})
 		m := &all[len(all)-1]
 		p.minute(m, want)
 		if p.bad || !want(m.Load) {
