@@ -23,12 +23,13 @@ var arrows = map[string][]string{
 	"thermo/table": {"thermo"},
 	"thermo/water": {"thermo"},
 	"store":        {},
-	"ingest":       {"thermo/unit"},
+	"ingest":       {"ingest/...", "thermo/unit"},
+	"ingest/...":   {"ingest/quality"},
 	"configs":      {},
-	"agent/loads":  {"thermo"},
+	"agent/loads":  {"thermo", "ingest/quality", "ingest/screen"},
 	"agent/design": {"thermo"},
 	"agent/site":   {"thermo/..."},
-	"agent/view":   {"agent/loads", "agent/design"},
+	"agent/view":   {"agent/loads", "agent/design", "ingest/quality"},
 	"agent/account": {
 		"agent/loads",
 	},
@@ -39,7 +40,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
@@ -47,10 +48,13 @@ var arrows = map[string][]string{
 // outside lists the pure packages and what they must not touch: clocks, files,
 // sockets, loggers.
 var outside = map[string][]string{
-	"thermo/...":    {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
-	"agent/loads":   {"os", "net", "log", "log/slog", "context", "time", "net/http"},
-	"agent/design":  {"os", "net", "log", "log/slog", "context", "net/http"},
-	"agent/parquet": {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"thermo/...":       {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
+	"ingest/quality":   {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"ingest/screen":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"ingest/sparkplug": {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/loads":      {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"agent/design":     {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/parquet":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/account": {
 		"os", "net", "log", "log/slog", "context", "net/http",
 	},

@@ -10,6 +10,7 @@ import (
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/ingest"
+	"heatreeve/ingest/quality"
 	"heatreeve/store"
 )
 
@@ -255,7 +256,7 @@ func readingsOf(b store.Beat, index map[uint32]int) []loads.Reading {
 	out := make([]loads.Reading, 0, len(b.Readings))
 	for _, r := range b.Readings {
 		if i, ok := index[r.Tag]; ok {
-			out = append(out, loads.Reading{Tag: i, At: r.At, Value: r.Value})
+			out = append(out, loads.Reading{Tag: i, At: r.At, Value: r.Value, Mark: quality.Mark(r.Mark)})
 		}
 	}
 	return out
@@ -266,8 +267,8 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 	kept := store.Beat{Through: through, Readings: make([]store.Reading, len(received))}
 	beat := loads.Beat{Through: through, Readings: make([]loads.Reading, len(received))}
 	for i, r := range received {
-		kept.Readings[i] = store.Reading{Tag: l.tagIDs[r.Tag], At: r.At, Value: r.Value, Stamped: r.Stamped}
-		beat.Readings[i] = loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value}
+		kept.Readings[i] = store.Reading{Tag: l.tagIDs[r.Tag], At: r.At, Value: r.Value, Stamped: r.Stamped, Mark: uint8(r.Mark)}
+		beat.Readings[i] = loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value, Mark: r.Mark}
 	}
 	for _, m := range l.accounts.advance(beat) {
 		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))

@@ -16,12 +16,18 @@
 // the key.
 package ingest
 
+import "heatreeve/ingest/quality"
+
 // Reading is one accepted value of one tag.
 type Reading struct {
 	Tag     int     // index into the tags given to [New] or [NewDecoder]
 	At      int64   // event time, Unix nanoseconds: the payload's stamp, else the arrival
 	Value   float64 // SI, finite, within the tag's Min and Max
 	Stamped bool    // At came from the payload
+	// Mark says what the source thinks of the value. One that is bad is accepted
+	// without being used: from At on the tag has no value until there is a better one.
+	// Its Value may be NaN.
+	Mark quality.Mark
 	// InOrder says that the message came in the order in which the broker keeps
 	// what it has for this session: QoS 1 and not retained. Others overtake what
 	// is still kept. A [Decoder] leaves it false; a [Session] sets it.

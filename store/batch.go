@@ -8,6 +8,9 @@ type Reading struct {
 	At      int64
 	Value   float64
 	Stamped bool
+	// Mark is what the source says of the value; 0 is good. What the others are, the
+	// program that writes them knows.
+	Mark uint8
 }
 
 // Beat is one step of the engine: the readings that came in, in the order in

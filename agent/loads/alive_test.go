@@ -26,7 +26,7 @@ func exceptional(age int64) Config {
 	return cfg
 }
 
-func sign(s, value float64) Reading { return Reading{alive, through(s), value} }
+func sign(s, value float64) Reading { return Reading{Tag: alive, At: through(s), Value: value} }
 
 // beating are heartbeats every ten seconds in [from, to].
 func beating(from, to float64) (all []Reading) {
@@ -75,7 +75,7 @@ func TestAfterALapseANewReadingIsWanted(t *testing.T) {
 	again := at(310, 3, 350, 330)
 	e.Advance(Beat{append(again[:2:2], beating(310, 320)...), through(321)}, nil)
 	checkFigure(t, e, Stale, `tag "TO" has not reported since its source was last gone by tag "PLC"`)
-	e.Advance(Beat{append(beating(330, 330), Reading{outlet, through(330), 330}), through(340)}, nil)
+	e.Advance(Beat{append(beating(330, 330), Reading{Tag: outlet, At: through(330), Value: 330}), through(340)}, nil)
 	checkFigure(t, e, NoFault, "")
 	l := e.Snapshot().Loads[0]
 	near(t, "given", l.Given, rate160*(100+lifespan)+240e3*10, 1e-3)

@@ -36,7 +36,7 @@ func TestVesselAtRest(t *testing.T) {
 		var raw float64
 		for s := 0.0; s <= days*24*hours; s += 10 {
 			T := 320 + tt.duty*one/(500*4000)*s + sigma*random.NormFloat64()
-			e.Advance(Beat{[]Reading{{0, through(s), T}}, through(s)}, nil)
+			e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: T}}, through(s)}, nil)
 			raw += max(0, e.Snapshot().Loads[0].Figure.Rate) * 500 * 4000 * 10
 		}
 		l := e.Snapshot().Loads[0]

@@ -59,7 +59,7 @@ func beats(b *testing.B, n int, cfg Config, flow func(at int64) float64) {
 		q := flow(at)
 		for i := range n {
 			for k, v := range [...]float64{q, 343 + t, 323 - t, 4e5 + 1e3*t} {
-				readings[4*i+k] = Reading{4*i + k, at, v}
+				readings[4*i+k] = Reading{Tag: 4*i + k, At: at, Value: v}
 			}
 		}
 		closed = e.Advance(Beat{readings, at}, closed[:0])

@@ -19,7 +19,7 @@ func course(t *rapid.T) []Reading {
 			if tag != flow {
 				v = 300 + 30*v
 			}
-			all = append(all, Reading{tag, epoch + s, v})
+			all = append(all, Reading{Tag: tag, At: epoch + s, Value: v})
 			s += rapid.Int64Range(1, 9e9).Draw(t, "step")
 			if rapid.IntRange(0, 60).Draw(t, "gap") == 0 {
 				s += 90e9

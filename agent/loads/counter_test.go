@@ -265,7 +265,7 @@ func TestCounterThatReportsByException(t *testing.T) {
 	e := engine(t, cfg)
 	var closed []Minute
 	for s := 0.0; s <= 300; s += 10 {
-		rr := append(temps(s, 350, 330), Reading{3, through(s), 1})
+		rr := append(temps(s, 350, 330), Reading{Tag: 3, At: through(s), Value: 1})
 		if s == 0 || s == 280 {
 			rr = append(rr, counts(s, s)...)
 		}
@@ -288,7 +288,7 @@ func TestSilentCounterAmongSilentTags(t *testing.T) {
 		cfg.Tags[flow].MaxAge = 50 * second
 		cfg.Tags = append(cfg.Tags, Tag{Name: "ALIVE", MaxAge: 10 * minute})
 		e := engine(t, cfg)
-		e.Advance(Beat{append(counts(0, 0), Reading{3, through(0), 1}), through(0)}, nil)
+		e.Advance(Beat{append(counts(0, 0), Reading{Tag: 3, At: through(0), Value: 1}), through(0)}, nil)
 		for s := step; s < 280; s += step {
 			e.Advance(Beat{nil, through(s)}, nil)
 		}

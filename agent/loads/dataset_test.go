@@ -79,7 +79,7 @@ func TestRecordedHeatOfRealLoops(t *testing.T) {
 		var recorded float64
 		for _, h := range hours {
 			at := int64(h.at) * second
-			e.Advance(Beat{[]Reading{{flow, at, h.flow}, {inlet, at, h.supply}, {outlet, at, h.ret}}, at}, nil)
+			e.Advance(Beat{[]Reading{{Tag: flow, At: at, Value: h.flow}, {Tag: inlet, At: at, Value: h.supply}, {Tag: outlet, At: at, Value: h.ret}}, at}, nil)
 			recorded += h.recorded * 3600
 		}
 		e.Advance(Beat{nil, int64(hours[len(hours)-1].at)*second + 120*minute}, nil)

@@ -57,7 +57,7 @@ func (h *hourly) run(t *testing.T, rng *rand.Rand, offset [3]float64) (off, pred
 			for first[k] <= float64(s) {
 				v := h.truth[k](first[k]) + offset[k] + h.noise[k](rng)
 				if h.sends == nil || !sent[k] || h.sends(k, last[k], v) {
-					b.Readings = append(b.Readings, Reading{k, through(first[k]), v})
+					b.Readings = append(b.Readings, Reading{Tag: k, At: through(first[k]), Value: v})
 					last[k], sent[k] = v, true
 				}
 				first[k] += h.next[k](rng)

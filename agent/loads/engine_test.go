@@ -283,7 +283,7 @@ func TestAbsurdFlowIsAFault(t *testing.T) {
 // missing time.
 func TestStrayOldStampOpensAnHourAtMost(t *testing.T) {
 	e := engine(t, plant(liquid))
-	e.Advance(Beat{append([]Reading{{flow, 946_684_807 * second, 2}}, at(0, 2, 350, 330)...), through(60)}, nil)
+	e.Advance(Beat{append([]Reading{{Tag: flow, At: 946_684_807 * second, Value: 2}}, at(0, 2, 350, 330)...), through(60)}, nil)
 	l := e.Snapshot().Loads[0]
 	if l.Measured != minute || l.Missing != reachBack-minute {
 		t.Errorf("measured %d s, missing %d s; want 60 and the rest of an hour", l.Measured/second, l.Missing/second)
@@ -296,7 +296,7 @@ func TestBurstWithinAGridStep(t *testing.T) {
 	e := engine(t, plant(liquid))
 	var burst []Reading
 	for i := range int64(10_000) {
-		burst = append(burst, Reading{flow, epoch + 1 + i*99_000, float64(i)})
+		burst = append(burst, Reading{Tag: flow, At: epoch + 1 + i*99_000, Value: float64(i)})
 	}
 	e.Advance(Beat{append(burst, at(0, 2, 350, 330)[1:]...), through(0)}, nil)
 	e.Advance(Beat{burst[5000:5001], through(2)}, nil)

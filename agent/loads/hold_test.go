@@ -222,7 +222,7 @@ func TestPumpHeat(t *testing.T) {
 		var duty, share, cp [2]float64
 		for i, cfg := range []Config{plain, cfg} {
 			e := engine(t, cfg)
-			readings := append(at(0, flowing, 333.15, 330), Reading{3, epoch, power})
+			readings := append(at(0, flowing, 333.15, 330), Reading{Tag: 3, At: epoch, Value: power})
 			e.Advance(Beat{readings[:len(cfg.Tags)], through(1)}, nil)
 			f := e.Snapshot().Loads[0].Figure
 			duty[i], share[i] = f.Duty, f.Share[PartPump]
@@ -237,7 +237,7 @@ func TestPumpHeat(t *testing.T) {
 		near(t, "share of the pump", share[1], by/10, 1e-6)
 		// a stopped pump leaves nothing, whatever its power reads
 		e := engine(t, cfg)
-		e.Advance(Beat{append(at(0, 0, 333.15, 330), Reading{3, epoch, power}), through(1)}, nil)
+		e.Advance(Beat{append(at(0, 0, 333.15, 330), Reading{Tag: 3, At: epoch, Value: power}), through(1)}, nil)
 		if f := e.Snapshot().Loads[0].Figure; !f.Idle || f.Duty != 0 {
 			t.Errorf("idle %v, duty %g W; want idle, and nothing", f.Idle, f.Duty)
 		}

@@ -48,7 +48,7 @@ func sway(b *testing.B, cfg Config, tells func(tag int) bool) {
 				if len(cfg.Tags) > len(cfg.Loads) {
 					v = [...]float64{2e-3, 343 + t, 323 - t, 4e5}[i%4]
 				}
-				readings = append(readings, Reading{i, at, v})
+				readings = append(readings, Reading{Tag: i, At: at, Value: v})
 			}
 		}
 		closed = e.Advance(Beat{readings, at}, closed[:0])

@@ -32,7 +32,7 @@ func signs(t *rapid.T) (all []Reading) {
 		if rapid.IntRange(0, 15).Draw(t, "gone") == 0 {
 			value = 0
 		}
-		all = append(all, Reading{alive, epoch + s, value})
+		all = append(all, Reading{Tag: alive, At: epoch + s, Value: value})
 		s += rapid.Int64Range(2e9, 15e9).Draw(t, "step")
 		if rapid.IntRange(0, 15).Draw(t, "lapse") == 0 {
 			s += 40e9

@@ -33,6 +33,7 @@ package loads
 import (
 	"math"
 
+	"heatreeve/ingest/quality"
 	"heatreeve/thermo"
 )
 
@@ -46,6 +47,7 @@ type Reading struct {
 	Tag   int   // index into [Config.Tags]
 	At    int64 // event time
 	Value float64
+	Mark  quality.Mark // what its source says of it
 }
 
 // Beat is one step of the agent's work: readings in order of arrival, and the

@@ -72,12 +72,12 @@ func meterYear(t *testing.T, rows []registers, atOutlet bool) (months [12]month,
 	e := engine(t, cfg)
 	var closed []Minute
 	for i, r := range rows {
-		rr := []Reading{{flow, r.at, r.volume}, {meter, r.at, r.heat}}
+		rr := []Reading{{Tag: flow, At: r.at, Value: r.volume}, {Tag: meter, At: r.at, Value: r.heat}}
 		if i+1 < len(rows) {
 			n := rows[i+1]
 			months[time.Unix(0, r.at).UTC().Month()-1].recorded += n.heat - r.heat
 			if v := n.volume - r.volume; v > 0 {
-				rr = append(rr, Reading{inlet, r.at, (n.supply-r.supply)/v + 273.15}, Reading{outlet, r.at, (n.back-r.back)/v + 273.15})
+				rr = append(rr, Reading{Tag: inlet, At: r.at, Value: (n.supply-r.supply)/v + 273.15}, Reading{Tag: outlet, At: r.at, Value: (n.back-r.back)/v + 273.15})
 			}
 		}
 		closed = e.Advance(Beat{rr, r.at + minute}, closed[:0])

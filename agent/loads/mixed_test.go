@@ -101,7 +101,7 @@ func mixedCourse(t *rapid.T) []Reading {
 		s := rapid.Int64Range(0, 5e9).Draw(t, "first")
 		for s < 600e9 {
 			if last = value(t, tag, last, calm); tag == mixCount || s < silent || s >= heard {
-				all = append(all, Reading{tag, epoch + s, last})
+				all = append(all, Reading{Tag: tag, At: epoch + s, Value: last})
 			}
 			s += rapid.Int64Range(1, most).Draw(t, "step")
 			if rapid.IntRange(0, 30*calm).Draw(t, "gap") == 0 {

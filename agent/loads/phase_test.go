@@ -68,7 +68,7 @@ func airCooler(kind thermo.MoistureKind, hasCoil bool) Config {
 
 func airAt(s, inC, outC, moisture, coilC float64) []Reading {
 	t := epoch + int64(s*1e9)
-	return append(at(s, 2, 273.15+inC, 273.15+outC), Reading{humidity, t, moisture}, Reading{coil, t, 273.15 + coilC})
+	return append(at(s, 2, 273.15+inC, 273.15+outC), Reading{Tag: humidity, At: t, Value: moisture}, Reading{Tag: coil, At: t, Value: 273.15 + coilC})
 }
 
 // A heater that barely warms air near saturation dries it all the same, and a coil
@@ -136,7 +136,7 @@ func TestHumidityThatIsNone(t *testing.T) {
 		{"no reading", at(0, 2, 300, 290), 1, NoReading, `"MT"`},
 		{"beyond saturation", airAt(0, 30, 20, 1.2, 25), 1, OutOfRange, "humidity at the inlet: relative humidity of 120 %"},
 		{"stale", airAt(0, 30, 20, 0.5, 25), 11, Stale, `"MT"`},
-		{"stale coil", append(airAt(0, 30, 20, 0.5, 25), Reading{humidity, epoch + 15*second, 0.5}), 21, Stale, `"TC"`},
+		{"stale coil", append(airAt(0, 30, 20, 0.5, 25), Reading{Tag: humidity, At: epoch + 15*second, Value: 0.5}), 21, Stale, `"TC"`},
 		{"good", airAt(0, 30, 20, 0.5, 25), 10, NoFault, ""},
 	} {
 		e := engine(t, cfg)

@@ -63,7 +63,7 @@ const epoch = 1_700_000_040 * second
 // at sets the three tags at epoch+s seconds.
 func at(s, q, ti, to float64) []Reading {
 	t := epoch + int64(s*1e9)
-	return []Reading{{flow, t, q}, {inlet, t, ti}, {outlet, t, to}}
+	return []Reading{{Tag: flow, At: t, Value: q}, {Tag: inlet, At: t, Value: ti}, {Tag: outlet, At: t, Value: to}}
 }
 
 func through(s float64) int64 { return epoch + int64(s*1e9) }

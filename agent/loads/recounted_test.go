@@ -65,7 +65,7 @@ func anyCourse(r *rand.Rand, grid, length int64) (all []Reading) {
 			last = anyValue(r, tag, last, calm)
 			repeated := len(all) > 0 && all[len(all)-1].Tag == tag && all[len(all)-1].At == at
 			if !repeated && (through || s < silent || s >= heard) {
-				all = append(all, Reading{tag, at, last})
+				all = append(all, Reading{Tag: tag, At: at, Value: last})
 			}
 			if r.IntN(30*calm) == 0 {
 				s += 10*second + r.Int64N(120e9)

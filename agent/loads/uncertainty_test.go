@@ -41,7 +41,7 @@ func TestSharedPressureCountsOnce(t *testing.T) {
 	s := &cfg.Loads[0].Stream
 	s.Pressure, s.OutletPressure = FromTag(3), FromTag(3)
 	e := engine(t, cfg)
-	e.Advance(Beat{append(at(0, 2, 350, 330), Reading{3, epoch, 5e5}), through(1)}, nil)
+	e.Advance(Beat{append(at(0, 2, 350, 330), Reading{Tag: 3, At: epoch, Value: 5e5}), through(1)}, nil)
 	f := e.Snapshot().Loads[0].Figure
 	if f.Fault != NoFault || f.Share[PartOutletPressure] != 0 {
 		t.Errorf("fault %v, share of the outlet pressure %g; want none and 0", f.Fault, f.Share[PartOutletPressure])

@@ -25,7 +25,7 @@ func closed(v Vessel) Config {
 // [from, to], and books what ends by then.
 func follows(e *Engine, tag int, from, to, dt float64, value func(s float64) float64) {
 	for s := from; s <= to; s += dt {
-		e.Advance(Beat{[]Reading{{tag, through(s), value(s)}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: tag, At: through(s), Value: value(s)}}, through(s)}, nil)
 	}
 }
 
@@ -126,7 +126,7 @@ func TestRigidVesselOfGas(t *testing.T) {
 		e := engine(t, closed(v))
 		for s := 0.0; s <= 600; s += 5 {
 			T := T0 + rate*s
-			e.Advance(Beat{[]Reading{{0, through(s), T}, {1, through(s), p0 * T / T0}}, through(s)}, nil)
+			e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: T}, {Tag: 1, At: through(s), Value: p0 * T / T0}}, through(s)}, nil)
 		}
 		duty[rigid] = e.Snapshot().Loads[0].Figure.Duty
 	}
@@ -162,7 +162,7 @@ func TestRigidVesselOfSteam(t *testing.T) {
 		case 7200:
 			at[1] = state
 		}
-		e.Advance(Beat{[]Reading{{0, through(s), temperature(s)}, {1, through(s), p}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: temperature(s)}, {Tag: 1, At: through(s), Value: p}}, through(s)}, nil)
 	}
 	l := e.Snapshot().Loads[0]
 	want := 3 * first.Density * (at[1].InternalEnergy - at[0].InternalEnergy)
@@ -199,7 +199,7 @@ func TestVesselBeingFilled(t *testing.T) {
 		if s >= 1800 {
 			kg += 100
 		}
-		e.Advance(Beat{[]Reading{{0, through(s), 320 + s/1000}, {2, through(s), kg}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: 320 + s/1000}, {Tag: 2, At: through(s), Value: kg}}, through(s)}, nil)
 		switch f := e.Snapshot().Loads[0].Figure; {
 		case s > 310 && s <= 1800 || s >= 2410:
 			if f.Fault != NoFault {
@@ -243,7 +243,7 @@ func TestVesselFaults(t *testing.T) {
 	negative.Content = FromTag(2)
 	e = engine(t, closed(negative))
 	for s := 0.0; s <= 600; s += 10 {
-		e.Advance(Beat{[]Reading{{0, through(s), 320}, {2, through(s), -1}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: 320}, {Tag: 2, At: through(s), Value: -1}}, through(s)}, nil)
 	}
 	checkFigure(t, e, OutOfRange, "content of -1 kg: it must not be below zero, nor more than any vessel holds")
 }
@@ -260,9 +260,9 @@ func TestVesselByException(t *testing.T) {
 		e := engine(t, cfg)
 		last, before := 0.0, 0.0
 		for s := 0.0; s <= 30*hours; s += 60 {
-			beat := Beat{[]Reading{{1, through(s), 1}}, through(s)}
+			beat := Beat{[]Reading{{Tag: 1, At: through(s), Value: 1}}, through(s)}
 			if T := 320 + s/hours; math.Abs(T-last) >= 0.5 {
-				beat.Readings = append(beat.Readings, Reading{0, through(s), T})
+				beat.Readings = append(beat.Readings, Reading{Tag: 0, At: through(s), Value: T})
 				last = T
 			}
 			e.Advance(beat, nil)
@@ -300,7 +300,7 @@ func TestVesselUncertaintyByHand(t *testing.T) {
 		e := engine(t, cfg)
 		for s := 0.0; s <= 900; s += 10 {
 			wobble := 0.01 * float64(1-2*(int(s/10)%2)) // a scatter of 0.01 K about the line
-			e.Advance(Beat{[]Reading{{0, through(s), 320 + s/1000 + wobble}, {2, through(s), 500}}, through(s)}, nil)
+			e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: 320 + s/1000 + wobble}, {Tag: 2, At: through(s), Value: 500}}, through(s)}, nil)
 		}
 		g := e.Snapshot().Loads[0].Figure
 		near(t, "duty", g.Duty, 2200, 5) // the wobble is not quite level
@@ -327,7 +327,7 @@ func TestVesselByVolume(t *testing.T) {
 	cfg.Tags[1].Accuracy = Accuracy{Rel: 0.01 * math.Sqrt(3)}
 	e := engine(t, cfg)
 	for s := 0.0; s <= 600; s += 5 {
-		e.Advance(Beat{[]Reading{{0, through(s), 400 - s/50}, {1, through(s), 5e5 * (1 - s/50/400)}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: 400 - s/50}, {Tag: 1, At: through(s), Value: 5e5 * (1 - s/50/400)}}, through(s)}, nil)
 	}
 	f := e.Snapshot().Loads[0].Figure
 	now, err := n2.At(f.Content, f.Pressure)
@@ -371,7 +371,7 @@ func TestVesselAfterALapse(t *testing.T) {
 		if s >= 1100 {
 			T += 30 // another tank, for all we know
 		}
-		e.Advance(Beat{[]Reading{{0, through(s), T}, {1, through(s), 1}}, through(s)}, nil)
+		e.Advance(Beat{[]Reading{{Tag: 0, At: through(s), Value: T}, {Tag: 1, At: through(s), Value: 1}}, through(s)}, nil)
 		f := e.Snapshot().Loads[0].Figure
 		switch {
 		case s >= 310 && s <= 900 || s >= 1410:
@@ -388,7 +388,7 @@ func TestTrendsOverARestart(t *testing.T) {
 	e := engine(t, closed(tank()))
 	follows(e, 0, 0, 400, 10, func(s float64) float64 { return 320 + s/1000 })
 	for s := 410.0; s <= 1200; s += 10 {
-		e.Adopt(Beat{[]Reading{{0, through(s), 320 + s/1000}}, through(s)})
+		e.Adopt(Beat{[]Reading{{Tag: 0, At: through(s), Value: 320 + s/1000}}, through(s)})
 	}
 	e.Advance(Beat{nil, through(1201)}, nil)
 	near(t, "duty", e.Snapshot().Loads[0].Figure.Duty, 2000, 1e-6)

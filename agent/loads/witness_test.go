@@ -15,7 +15,7 @@ func attested() Config {
 	return cfg
 }
 
-func energy(s, J float64) Reading { return Reading{meter, through(s), J} }
+func energy(s, J float64) Reading { return Reading{Tag: meter, At: through(s), Value: J} }
 
 // attend puts seconds at 160 kW through, with the register of the meter at the given
 // instants, and without temperatures from one instant to another.
@@ -151,7 +151,7 @@ func TestSilentWitnessAmongSilentTags(t *testing.T) {
 		cfg.Tags[meter].OnChange, cfg.Tags[meter].Alive, cfg.Tags[meter].MaxAge = true, life, 25*second
 		cfg.Tags = append(cfg.Tags, Tag{Name: "LIFE", MaxAge: 10 * minute})
 		e := engine(t, cfg)
-		e.Advance(Beat{[]Reading{energy(0, 5e6), {life, through(0), 1}}, through(0)}, nil)
+		e.Advance(Beat{[]Reading{energy(0, 5e6), {Tag: life, At: through(0), Value: 1}}, through(0)}, nil)
 		for s := step; s < 91; s += step {
 			e.Advance(Beat{nil, through(s)}, nil)
 		}
