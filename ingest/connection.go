@@ -33,6 +33,17 @@ func (s *Session) connected(ctx context.Context, c mqtt.Client) {
 	if err != nil && ctx.Err() == nil {
 		l.end(err) // the next connection tries again; without effect if this one is lost already
 	}
+	if err == nil {
+		s.greet()
+	}
+}
+
+// greet opens the way for what is to be published, the presence before all else.
+func (s *Session) greet() {
+	if s.o.Presence != nil {
+		s.outbox.first(s.online())
+	}
+	s.outbox.connection(true)
 }
 
 func (s *Session) subscribe(ctx context.Context, c mqtt.Client) error {

@@ -14,6 +14,7 @@ import (
 // Defaults of [Options].
 const (
 	DefaultBuffer         = 65536
+	DefaultOutbox         = 4096
 	DefaultMaxBackoff     = 30 * time.Second
 	DefaultKeepAlive      = 15 * time.Second
 	DefaultPingTimeout    = 5 * time.Second
@@ -46,6 +47,9 @@ type Options struct {
 	Ahead  time.Duration // see [NewDecoder]
 	Buffer int           // readings held until taken; 0: DefaultBuffer
 
+	Presence *Presence // nil: none, and no will
+	Outbox   int       // messages held until published; 0: DefaultOutbox
+
 	MaxBackoff     time.Duration // longest pause between two attempts; 0: DefaultMaxBackoff
 	KeepAlive      time.Duration // silence before the broker is probed, whole seconds; 0: DefaultKeepAlive
 	PingTimeout    time.Duration // wait for the probe's answer; 0: DefaultPingTimeout
@@ -58,6 +62,7 @@ type Options struct {
 // withDefaults fills in what was left out and returns every fault, joined.
 func (o Options) withDefaults() (Options, error) {
 	o.Buffer = orDefault(o.Buffer, DefaultBuffer)
+	o.Outbox = orDefault(o.Outbox, DefaultOutbox)
 	o.MaxBackoff = orDefault(o.MaxBackoff, DefaultMaxBackoff)
 	o.KeepAlive = orDefault(o.KeepAlive, DefaultKeepAlive)
 	o.PingTimeout = orDefault(o.PingTimeout, DefaultPingTimeout)
@@ -79,8 +84,11 @@ func (o Options) withDefaults() (Options, error) {
 	if o.Password != nil && o.Username == "" {
 		faults = append(faults, errors.New("a password without a user name"))
 	}
-	if o.Buffer < 0 || o.MaxBackoff < 0 || o.PingTimeout < 0 || o.ConnectTimeout < 0 {
-		faults = append(faults, errors.New("buffer and times must not be negative"))
+	if err := o.Presence.check(); err != nil {
+		faults = append(faults, err)
+	}
+	if o.Buffer < 0 || o.Outbox < 0 || o.MaxBackoff < 0 || o.PingTimeout < 0 || o.ConnectTimeout < 0 {
+		faults = append(faults, errors.New("buffers and times must not be negative"))
 	}
 	if o.KeepAlive < time.Second || o.KeepAlive > 65535*time.Second {
 		faults = append(faults, fmt.Errorf("keep-alive %v; allowed are 1 s to 65535 s", o.KeepAlive))

@@ -6,6 +6,8 @@ import (
 	"fmt"
 	"net"
 	"net/url"
+	"slices"
+	"sync"
 	"sync/atomic"
 	"time"
 
@@ -22,12 +24,16 @@ type Session struct {
 	decoder *Decoder
 	topics  []*topic // by name
 	inbox   *inbox
+	outbox  *outbox
 	tally   *tally
 
 	running atomic.Bool
 	client  atomic.Pointer[mqtt.Client]
 	link    atomic.Pointer[link]
 	dialErr atomic.Pointer[error] // of the attempt under way: the library does not hand it on whole
+
+	will      []byte    // payload, which the library holds; nil without a presence
+	presented time.Time // of the attempt under way
 
 	outcomes []Outcome // of the message at hand
 	short    shortLives
@@ -47,7 +53,10 @@ func New(tags []Tag, o Options) (*Session, error) {
 	}
 	s := &Session{
 		tags: tags, o: o, broker: b, decoder: decoder, topics: decoder.sorted(),
-		inbox: newInbox(o.Buffer, patience(o.PingTimeout)), tally: newTally(len(tags)),
+		inbox: newInbox(o.Buffer, patience(o.PingTimeout)), outbox: newOutbox(o.Outbox), tally: newTally(len(tags)),
+	}
+	if o.Presence != nil {
+		s.will = slices.Clone(o.Presence.Offline(o.Now()))
 	}
 	for _, t := range s.topics {
 		if len(t.tags) > o.Buffer {
@@ -74,12 +83,19 @@ func (s *Session) Run(ctx context.Context) error {
 	}
 	client := mqtt.NewClient(s.clientOptions(ctx))
 	s.client.Store(&client)
+	s.outbox.up = client.IsConnectionOpen
 	client.Connect()
+	sending, endSending := context.WithCancel(context.WithoutCancel(ctx))
+	var sender sync.WaitGroup
+	sender.Go(func() { s.send(sending, client) })
 	<-ctx.Done()
+	s.part()
 	if l := s.link.Load(); l != nil {
 		l.parting.Store(true)
 	}
 	client.Disconnect(500) // ms
+	endSending()
+	sender.Wait()
 	return nil
 }
 
@@ -90,6 +106,9 @@ func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 	o.SetAutoReconnect(true).SetMaxReconnectInterval(s.o.MaxBackoff)
 	o.SetConnectRetry(true).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
 	o.SetCredentialsProvider(s.credentials)
+	if s.will != nil {
+		o.SetBinaryWill(s.o.Presence.Topic, s.will, 1, true)
+	}
 	o.SetCustomOpenConnectionFn(func(*url.URL, mqtt.ClientOptions) (net.Conn, error) { return s.open(ctx) })
 	o.SetDefaultPublishHandler(func(_ mqtt.Client, m mqtt.Message) { s.receive(ctx, m) })
 	o.SetOnConnectHandler(func(c mqtt.Client) { s.connected(ctx, c) })
@@ -105,6 +124,7 @@ func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 // credentials has no way to fail, so [Session.open] does it instead.
 func (s *Session) credentials() (user, password string) {
 	s.dialErr.Store(nil)
+	s.present()
 	if s.o.Password == nil {
 		return s.o.Username, ""
 	}
@@ -123,6 +143,7 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 		return nil, *err
 	}
 	s.inbox.reconnect()
+	s.outbox.connection(false)
 	s.tally.subscribed(0, nil)
 	l, err := s.dial(ctx)
 	if err != nil {
@@ -200,6 +221,7 @@ func (s *Session) TellAt(n int) { s.inbox.tellAt(n) }
 // Stats returns the counts so far.
 func (s *Session) Stats() Stats {
 	stats := s.tally.copy()
+	stats.Outbox = s.outbox.stats()
 	if c := s.client.Load(); c != nil {
 		stats.Connected = (*c).IsConnectionOpen()
 	}

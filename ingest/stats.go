@@ -10,14 +10,15 @@ import (
 // Stats is a copy of a session's counts since its start.
 type Stats struct {
 	Connected    bool
-	Connections  uint64     // how often it was connected
-	Losses       uint64     // how often a connection was lost
-	Failures     uint64     // attempts to connect that failed
-	LastError    string     // of the last failure or loss; "" while all is well
-	Subscribed   int        // topics granted on this connection
-	Denied       []string   // topics that the broker refused, sorted
-	LastReceived int64      // arrival of the last message, Unix nanoseconds; 0: none yet
-	UnknownTopic uint64     // messages on a topic that no tag reads from
+	Connections  uint64   // how often it was connected
+	Losses       uint64   // how often a connection was lost
+	Failures     uint64   // attempts to connect that failed
+	LastError    string   // of the last failure or loss; "" while all is well
+	Subscribed   int      // topics granted on this connection
+	Denied       []string // topics that the broker refused, sorted
+	LastReceived int64    // arrival of the last message, Unix nanoseconds; 0: none yet
+	UnknownTopic uint64   // messages on a topic that no tag reads from
+	Outbox       OutboxStats
 	Tags         []TagStats // as given to [New]
 }
 
