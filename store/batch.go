@@ -37,6 +37,7 @@ type Minute struct {
 	Given, Taken                            float64 // in the measured time
 	BridgedGiven, BridgedTaken              float64
 	Latent                                  float64 // s within Measured
+	Uncertain                               float64 // s within Measured; 0 in records from before it was kept
 	Duty, DutyMin, DutyMax, DutyUncertainty float64
 	Flow                                    float64
 	Inlet, Outlet                           float64
@@ -60,6 +61,7 @@ type Register struct {
 	Given, Taken               float64
 	BridgedGiven, BridgedTaken float64
 	Measured, Bridged, Missing float64
+	Uncertain                  float64 // within Measured; 0 in records from before it was kept
 }
 
 // Batch is what one [Store.Commit] writes in one transaction. Minutes and

@@ -10,13 +10,35 @@ type column struct {
 	at      []int64
 	bits    []uint64
 	stamped []bool
+	marks   []uint8 // nil where all are 0
 }
 
 func (c *column) add(r Reading) {
 	c.at = append(c.at, r.At)
 	c.bits = append(c.bits, math.Float64bits(r.Value))
 	c.stamped = append(c.stamped, r.Stamped)
+	if r.Mark != 0 || c.marks != nil {
+		c.marks = append(c.marks, make([]uint8, len(c.at)-len(c.marks))...)
+		c.marks[len(c.at)-1] = r.Mark
+	}
 }
+
+// mark is that of the i-th reading.
+func (c *column) mark(i int) int {
+	if c.marks == nil {
+		return 0
+	}
+	return int(c.marks[i])
+}
+
+// noValue is the float of a marked reading without a value: it takes no room.
+var noValue = math.Float64bits(math.NaN())
+
+// none reports whether the i-th reading is marked and has no value.
+func (c *column) none(i int) bool { return c.mark(i) != 0 && c.bits[i] == noValue }
+
+// columnMarked is set in a column's first byte where any of its readings has a mark.
+const columnMarked = 1 << 7
 
 // columnHead is what precedes the coded part of a column. All readings are at
 // start plus a whole number of ticks of 10^tick ns; values are those of the numbers
@@ -36,13 +58,22 @@ type columnModel struct {
 	wasRegular          int
 	stampChange         [2]bit
 	wasStamped          int
+	markChange          bit
+	marks               [1 << 8]bit
+	wasMark             int
+	none                [2]bit // whether a reading with a mark has no value
+	wasNone             int
 	times, values, offs numbers
 }
 
 // appendColumn writes c, whose block's first instant is origin.
 func appendColumn(b []byte, c *column, origin int64) []byte {
 	h, whole := c.head()
-	b = append(b, byte(h.tick), byte(h.form)<<4|byte(h.k))
+	tick := byte(h.tick)
+	if c.marks != nil {
+		tick |= columnMarked
+	}
+	b = append(b, tick, byte(h.form)<<4|byte(h.k))
 	b = appendInstant(b, h.start-origin)
 	b = binary.AppendUvarint(b, zigzag(h.base))
 	b = binary.AppendUvarint(b, uint64(h.step))
@@ -57,21 +88,29 @@ func appendColumn(b []byte, c *column, origin int64) []byte {
 		if c.stamped[i] {
 			stamped = 1
 		}
-		m.put(&w, gap-lastGap, stamped, h.off(whole[i], c.bits[i]))
+		off := int64(0)
+		if !c.none(i) {
+			off = h.off(whole[i], c.bits[i])
+		}
+		m.put(&w, gap-lastGap, stamped, off, c.mark(i), c.marks != nil)
+		lastAt, lastGap = at, gap
+		if m.wasMark != 0 && m.putNone(&w, c.none(i)) {
+			continue
+		}
 		n := whole[i] - h.base
 		if h.step != 0 {
 			n /= h.step
 		}
 		m.values.put(&w, n-lastWhole)
-		lastAt, lastGap, lastWhole = at, gap, n
+		lastWhole = n
 	}
 	return w.finish(begin)
 }
 
 // put writes what of a reading is not its value.
-func (m *columnModel) put(w *bitWriter, late int64, stamped int, off int64) {
+func (m *columnModel) put(w *bitWriter, late int64, stamped int, off int64, mark int, marked bool) {
 	regular := 0
-	if late != 0 || off != 0 || stamped != m.wasStamped {
+	if late != 0 || off != 0 || stamped != m.wasStamped || mark != m.wasMark {
 		regular = 1
 	}
 	w.put(regular, &m.regular[m.wasRegular])
@@ -83,15 +122,44 @@ func (m *columnModel) put(w *bitWriter, late int64, stamped int, off int64) {
 	m.offs.put(w, off)
 	w.put(stamped^m.wasStamped, &m.stampChange[m.wasStamped])
 	m.wasStamped = stamped
+	if !marked {
+		return
+	}
+	if mark == m.wasMark {
+		w.put(0, &m.markChange)
+		return
+	}
+	w.put(1, &m.markChange)
+	putTree(w, m.marks[:], mark, 8)
+	m.wasMark = mark
 }
 
-func (m *columnModel) get(r *bitReader) (late, off int64) {
+// putNone writes whether a reading with a mark has no value.
+func (m *columnModel) putNone(w *bitWriter, none bool) bool {
+	is := 0
+	if none {
+		is = 1
+	}
+	w.put(is, &m.none[m.wasNone])
+	m.wasNone = is
+	return none
+}
+
+func (m *columnModel) getNone(r *bitReader) bool {
+	m.wasNone = r.get(&m.none[m.wasNone])
+	return m.wasNone != 0
+}
+
+func (m *columnModel) get(r *bitReader, marked bool) (late, off int64) {
 	m.wasRegular = r.get(&m.regular[m.wasRegular])
 	if m.wasRegular == 0 {
 		return 0, 0
 	}
 	late, off = m.times.get(r), m.offs.get(r)
 	m.wasStamped ^= r.get(&m.stampChange[m.wasStamped])
+	if marked && r.get(&m.markChange) != 0 {
+		m.wasMark = getTree(r, m.marks[:], 8)
+	}
 	return late, off
 }
 
@@ -113,9 +181,13 @@ func (c *column) head() (h columnHead, whole []int64) {
 			h.tick--
 		}
 	}
-	h.form, h.k = formOf(c.bits)
+	values := c.values()
+	h.form, h.k = formOf(values)
 	whole = make([]int64, len(c.bits))
 	last := int64(0)
+	if n, ok := h.form.whole(math.Float64frombits(values[0]), h.k); ok && c.none(0) {
+		last = n
+	}
 	for i, b := range c.bits {
 		if h.form == formBits {
 			whole[i] = int64(ordered(b))
@@ -139,6 +211,23 @@ func (c *column) head() (h columnHead, whole []int64) {
 	return h, whole
 }
 
+// values returns the bits of the values that there are, or of one where there is none.
+func (c *column) values() []uint64 {
+	if c.marks == nil {
+		return c.bits
+	}
+	var all []uint64
+	for i, b := range c.bits {
+		if !c.none(i) {
+			all = append(all, b)
+		}
+	}
+	if all == nil {
+		return []uint64{0}
+	}
+	return all
+}
+
 // divisor is the greatest that a and b have in common; both are less than 2^54.
 func divisor(a, b int64) int64 {
 	for b != 0 {
@@ -156,25 +245,31 @@ func unitOf(tick int) int64 { return int64(tens[tick]) }
 func parseColumn(b []byte, count uint64, origin int64, tag uint32, yield func(Reading) bool) error {
 	p := parser{rest: b}
 	head := p.take(2)
-	if p.bad || head[0] > maxDigits || form(head[1]>>4) >= forms || head[1]&15 > maxDigits {
+	if p.bad || head[0]&^columnMarked > maxDigits || form(head[1]>>4) >= forms || head[1]&15 > maxDigits {
 		return errRecord
 	}
-	h := columnHead{tick: int(head[0]), form: form(head[1] >> 4), k: int(head[1] & 15)}
+	h := columnHead{tick: int(head[0] &^ columnMarked), form: form(head[1] >> 4), k: int(head[1] & 15)}
 	h.start = origin + p.instant()
 	h.base = unzigzag(p.uvarint())
 	h.step = int64(p.uvarint())
 	if p.bad {
 		return errRecord
 	}
+	marked := head[0]&columnMarked != 0
 	r := newBitReader(p.rest)
 	var m columnModel
 	var at, gap, n int64
 	for range count {
-		late, off := m.get(&r)
+		late, off := m.get(&r, marked)
 		gap += late
 		at += gap
-		n += m.values.get(&r)
-		reading := Reading{Tag: tag, At: h.start + at*unitOf(h.tick), Stamped: m.wasStamped != 0, Value: h.value(n, off)}
+		reading := Reading{Tag: tag, At: h.start + at*unitOf(h.tick), Stamped: m.wasStamped != 0, Mark: uint8(m.wasMark)}
+		if m.wasMark != 0 && m.getNone(&r) {
+			reading.Value = math.NaN()
+		} else {
+			n += m.values.get(&r)
+			reading.Value = h.value(n, off)
+		}
 		if !yield(reading) {
 			return nil
 		}

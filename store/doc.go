@@ -28,8 +28,9 @@
 //	hours      int64 start, uint32 load / 8 -> hour records, CRC
 //	events     int64 at, uint64 number -> int64 until (0: it lasts), then for kind, subject
 //	           and text: uvarint length, bytes; CRC
-//	registers  "all" -> for each load, by number: uint32 load and 7 float64 (given,
-//	           taken, measured, missing, bridged, bridged given and taken); CRC
+//	registers  "all" -> for each load, by number: uint32 load and 8 float64 (given,
+//	           taken, measured, missing, bridged, bridged given and taken, uncertain
+//	           time); 1 byte: 8; CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
 //	           record it stands for, the engine's bytes, CRC
 //
@@ -58,7 +59,9 @@
 //	bits 0-4   which bytes of value XOR (the tag's value before) follow:
 //	           0 none, 1 all eight, else those left when whole zero bytes are
 //	           taken off both ends: 2 + index in the list of (leading, count)
-//	           (1,1) (1,2) .. (1,7) (2,1) .. (2,6) (3,1) .. (7,1)
+//	           (1,1) (1,2) .. (1,7) (2,1) .. (2,6) (3,1) .. (7,1);
+//	           31 the mark is not that of the tag's reading before: before the value
+//	           bytes stand 1 byte of mark and 1 byte, which says what is said here
 //
 // The value bytes follow with the low one first. An instant is the difference
 // d = time - foreseen time in nanoseconds, as q = floor(d / 10^6) and r = d - q·10^6:
@@ -67,8 +70,8 @@
 // Foreseen are: for the tag, the one that followed the tag before when that
 // last occurred, or else the next number; for its time, its last time plus its
 // last step, or for a tag that is new in the group, the time of the reading
-// before; for Stamped before the first reading, false; for its value, its last
-// one or 0; for through, as for a time, with 0 before the first beat.
+// before; for Stamped before the first reading, false; for its value and its mark, its
+// last ones or 0; for through, as for a time, with 0 before the first beat.
 //
 // Records that share this memory form a group. The memory starts empty with
 // each group. The open group lies in recent and, after that, in the three tails
@@ -95,7 +98,8 @@
 // where the checksum's key is the name without its own CRC, and for a column the uint32
 // tag after that. A column begins with
 //
-//	1 byte tick, 1 byte 16·form + digits, instant start less the name's earliest,
+//	1 byte tick, and 128 where any reading has a mark that is not 0, 1 byte
+//	16·form + digits, instant start less the name's earliest,
 //	uvarint zigzag(base), uvarint step
 //
 // All times are start + a whole number of 10^tick ns. All values are told as whole
@@ -107,26 +111,29 @@
 // An arithmetic coder of binary decisions follows, whose trailing zero bytes are
 // left out: of each reading one decision whether only the value is to be told; if not,
 // how much the difference of two times differs from the one before, by how many floats
-// the value lies beside its number's, and whether Stamped changes; then m less the
-// m before. [numbers] tells how an integer is cut into decisions, [bit] how each is
+// the value lies beside its number's, whether Stamped changes, and in a column with marks
+// whether the mark does and to what, the highest bit first; then, of a reading whose mark
+// is not 0, whether its value is NaN, as bits 0x7ff8000000000001; if not, m less the m
+// before. [numbers] tells how an integer is cut into decisions, [bit] how each is
 // forecast.
 //
 // Under one key of minutes lie those of up to 8 loads with one start, sorted by
 // load, and end with a CRC. Each is
 //
 //	1 byte shape: bits 0-2 the remainder of load / 8, bit 3 set, bit 4 if rare floats
-//	    follow, bit 5 if parts do
+//	    follow, bit 5 if parts do, bit 6 if Uncertain does
 //	floats Measured, Missing, Given, Taken
 //	floats Duty, DutyMin, DutyMax, DutyUncertainty, Flow, Inlet, Outlet, Pressure
 //	[floats Bridged, BridgedGiven, BridgedTaken, Latent, Witness, Compared, Content]
 //	[uvarint which parts there are: bit 0 the root of Random, bit 1 + i Systematic[i];
 //	    uint16 for each of these]
+//	[float Uncertain]
 //
 // Of a run of floats first come their counts, of 4 bits each, low half of a byte first,
 // and then their bytes. Of each float, XOR its forerunner, those bytes are told that are
 // left without zero bytes at the low end, high one first; a count up to 8 says how
 // many, and a greater one how many and 8, of those after a high byte that is zero. The
-// forerunner is 0, but Duty for DutyMin and DutyMax, Inlet for Outlet, and for Duty
+// forerunner is 0, but Duty for DutyMin and DutyMax, Inlet for Outlet, Measured for Uncertain, and for Duty
 // |Given - Taken| / Measured if this is a number. The second run and Content are float32, the
 // others float64.
 //
@@ -145,6 +152,7 @@
 //	[floats BridgedGiven, BridgedTaken, Witness, Compared, Untold]
 //	[uvarint which parts there are: bit 0 Random, bit 1 + i Systematic[i]; floats of
 //	    these]
+//	[float Uncertain]
 //
 // with the same forerunners, Duty for Demand as well, and HeatUncertainty for Untold; the
 // second run is float32. Hours that begin before built are

@@ -21,6 +21,7 @@ type Hour struct {
 	Given, Taken               float64 // J, in the measured time
 	BridgedGiven, BridgedTaken float64 // J
 	Latent                     float64 // s within Measured
+	Uncertain                  float64 // s within Measured; 0 of minutes from before it was kept
 	Duty                       float64 // W, mean over Measured
 	DutyMin, DutyMax           float64 // W, of the minutes that measured; 0 where none did
 	// Demand is the greatest mean duty of a quarter of an hour by the clock, in W:
@@ -67,6 +68,7 @@ func (h *Hour) Add(o Hour) {
 	h.BridgedGiven += o.BridgedGiven
 	h.BridgedTaken += o.BridgedTaken
 	h.Latent += o.Latent
+	h.Uncertain += o.Uncertain
 	h.Demand = max(h.Demand, o.Demand)
 	for i, x := range o.Systematic {
 		h.Systematic[i] += x

@@ -31,6 +31,9 @@ func (h *Hour) rare() [hourRare]told {
 		{float: &h.Untold, like: &h.HeatUncertainty}}
 }
 
+// uncertain lists the field that shapeDoubt tells of.
+func (h *Hour) uncertain() [1]told { return [1]told{{float: &h.Uncertain, like: &h.Measured}} }
+
 func (h *Hour) shares() shares { return shares{&h.Systematic, &h.Random} }
 
 // kept returns what of h is kept.
@@ -67,6 +70,10 @@ func appendHour(b []byte, h Hour) []byte {
 		b = binary.AppendUvarint(b, which)
 		b = appendFloats(b, h.shares().of(which))
 	}
+	if doubt := h.uncertain(); !allZero(doubt[:]) {
+		b[shape] |= shapeDoubt
+		b = appendFloats(b, doubt[:])
+	}
 	return b
 }
 
@@ -97,7 +104,7 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 	minutes := p.uvarint()
 	h.Minutes = uint32(minutes)
 	sums, means := p.floats(hourSums), p.floats(hourMeans)
-	var rare, shares coded
+	var rare, shares, doubt coded
 	var parts []told
 	if shape&shapeRare != 0 {
 		rare = p.floats(hourRare)
@@ -105,6 +112,9 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 	if shape&shapeParts != 0 {
 		parts = h.shares().of(p.which())
 		shares = p.floats(len(parts))
+	}
+	if shape&shapeDoubt != 0 {
+		doubt = p.floats(1)
 	}
 	if p.bad = p.bad || shape&(shapeUnused|shapeShort) != 0 || minutes > math.MaxUint32; p.bad || !want(h.Load) {
 		return
@@ -119,4 +129,8 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 		rare.read(rareFields[:])
 	}
 	shares.read(parts)
+	if shape&shapeDoubt != 0 {
+		doubtField := h.uncertain()
+		doubt.read(doubtField[:])
+	}
 }

@@ -42,7 +42,7 @@ func wave(load uint32, start int64) Minute {
 	return Minute{Load: load, Start: start, Measured: 50, Missing: 10, Given: 100 * n, Taken: n,
 		Duty: 2 * n, DutyMin: -n, DutyMax: 3 * n, DutyUncertainty: n / 4, Flow: 0.5,
 		Inlet: 300 + n, Outlet: 290, Pressure: 2e5,
-		Bridged: 4, BridgedGiven: 7 * n, BridgedTaken: 2, Latent: n / 2, Content: 310 - n, Witness: 90 * n, Compared: 99 * n,
+		Bridged: 4, BridgedGiven: 7 * n, BridgedTaken: 2, Latent: n / 2, Uncertain: n / 3, Content: 310 - n, Witness: 90 * n, Compared: 99 * n,
 		Systematic: [Shares]float64{0: n, 2: -2 * n, Shares - 1: 3}, Random: n * n}
 }
 
@@ -57,7 +57,7 @@ func TestHourFigures(t *testing.T) {
 	want := Hour{Load: 3, Start: start, Minutes: 60, Measured: 3000, Missing: 600, Given: 183_000, Taken: 1830,
 		Duty: 61, DutyMin: -60, DutyMax: 180, Demand: 2 * 795 * 50.0 / 900, HeatUncertainty: 1830 * 50.0 / 4, Mass: 1500,
 		Inlet: 330.5, Outlet: 290, Pressure: 2e5,
-		Bridged: 240, BridgedGiven: 7 * 1830, BridgedTaken: 120, Latent: 915, Content: 279.5, Witness: 90 * 1830, Compared: 99 * 1830,
+		Bridged: 240, BridgedGiven: 7 * 1830, BridgedTaken: 120, Latent: 915, Uncertain: 610, Content: 279.5, Witness: 90 * 1830, Compared: 99 * 1830,
 		Systematic: [Shares]float64{0: 1830, 2: -3660, Shares - 1: 180}, Random: 60 * 61 * 121 / 6}
 	want.Demand = float64(float32(want.Demand))
 	got := drain(t, s.Hours(3, start-hourNanos, start+hourNanos))
@@ -73,13 +73,13 @@ func TestHourFigures(t *testing.T) {
 	}
 	sum := got[0]
 	sum.Add(Hour{Load: 3, Start: start + hourNanos, Minutes: 60, Measured: 1000, Duty: 101, DutyMax: 200, Demand: 90, Mass: 1, Outlet: 330,
-		Bridged: 10, BridgedGiven: 1, BridgedTaken: 2, Latent: 85, Content: 319.5, Witness: 3, Compared: 4,
+		Bridged: 10, BridgedGiven: 1, BridgedTaken: 2, Latent: 85, Uncertain: 90, Content: 319.5, Witness: 3, Compared: 4,
 		Systematic: [Shares]float64{2: 60, 3: -1}, Random: 10, Untold: 5, HeatUncertainty: 5})
 	if sum.Minutes != 120 || sum.Measured != 4000 || sum.Duty != 71 || sum.Demand != 90 || sum.DutyMax != 200 ||
 		sum.Inlet != 330.5 || sum.Outlet != 300 || sum.Start != start {
 		t.Errorf("two hours together are %+v", sum)
 	}
-	if sum.Bridged != 250 || sum.BridgedGiven != 12_811 || sum.BridgedTaken != 122 || sum.Latent != 1000 || sum.Content != 289.5 ||
+	if sum.Bridged != 250 || sum.BridgedGiven != 12_811 || sum.BridgedTaken != 122 || sum.Latent != 1000 || sum.Uncertain != 700 || sum.Content != 289.5 ||
 		sum.Witness != 164_703 || sum.Compared != 181_174 || sum.Random != 73_820 || sum.HeatUncertainty != 22_880 || sum.Untold != 5 ||
 		sum.Systematic != [Shares]float64{0: 1830, 2: -3600, 3: -1, Shares - 1: 180} {
 		t.Errorf("two hours together are %+v", sum)

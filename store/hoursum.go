@@ -38,6 +38,7 @@ func (s *hourSum) add(m *Minute) {
 	s.BridgedGiven += m.BridgedGiven
 	s.BridgedTaken += m.BridgedTaken
 	s.Latent += m.Latent
+	s.Uncertain += m.Uncertain
 	s.duty += m.Duty * m.Measured
 	s.quarters[(m.Start-s.Start)/quarterNanos] += m.Duty * m.Measured
 	for i, x := range m.Systematic {

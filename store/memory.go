@@ -15,6 +15,7 @@ type memory struct {
 type tagMemory struct {
 	rhythm rhythm
 	bits   uint64 // of the last value
+	mark   uint8  // of the last reading
 	next   uint32 // the tag that followed last
 }
 
@@ -43,7 +44,7 @@ func (m *memory) learn(t *tagMemory, r Reading) {
 		before.next = r.Tag
 	}
 	t.rhythm.learn(r.At)
-	t.bits = math.Float64bits(r.Value)
+	t.bits, t.mark = math.Float64bits(r.Value), r.Mark
 	m.tag, m.at, m.stamped = r.Tag, r.At, r.Stamped
 }
 

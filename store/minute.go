@@ -21,7 +21,8 @@ const (
 	shapeShort  = 1 << 3 // a minute of this layout, not of the first
 	shapeRare   = 1 << 4 // floats follow that are 0 in most records
 	shapeParts  = 1 << 5 // the parts of the uncertainty follow
-	shapeUnused = 1<<6 | 1<<7
+	shapeDoubt  = 1 << 6 // Uncertain follows
+	shapeUnused = 1 << 7
 )
 
 // sums lists the fields that are told in full.
@@ -41,6 +42,9 @@ func (m *Minute) rare() [minuteRare]told {
 	return [...]told{{float: &m.Bridged}, {float: &m.BridgedGiven}, {float: &m.BridgedTaken}, {float: &m.Latent},
 		{float: &m.Witness}, {float: &m.Compared}, {&m.Content, nil, true}}
 }
+
+// uncertain lists the field that shapeDoubt tells of.
+func (m *Minute) uncertain() [1]told { return [1]told{{float: &m.Uncertain, like: &m.Measured}} }
 
 func (m *Minute) shares() shares { return shares{&m.Systematic, &m.Random} }
 
@@ -95,6 +99,10 @@ func appendMinute(b []byte, m Minute) []byte {
 			b = binary.LittleEndian.AppendUint16(b, code)
 		}
 	}
+	if doubt := m.uncertain(); !allZero(doubt[:]) {
+		b[shape] |= shapeDoubt
+		b = appendFloats(b, doubt[:])
+	}
 	return b
 }
 
@@ -142,12 +150,15 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 		return
 	}
 	sums, means := p.floats(minuteSums), p.floats(minuteMeans)
-	var rare coded
+	var rare, doubt coded
 	if shape&shapeRare != 0 {
 		rare = p.floats(minuteRare)
 	}
 	if shape&shapeParts != 0 {
 		p.parts(m)
+	}
+	if shape&shapeDoubt != 0 {
+		doubt = p.floats(1)
 	}
 	if p.bad = p.bad || shape&shapeUnused != 0; p.bad || !want(m.Load) {
 		return
@@ -160,6 +171,10 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 	if shape&shapeRare != 0 {
 		rareFields := m.rare()
 		rare.read(rareFields[:])
+	}
+	if shape&shapeDoubt != 0 {
+		doubtField := m.uncertain()
+		doubt.read(doubtField[:])
 	}
 }
 

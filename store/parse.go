@@ -121,7 +121,17 @@ func (p *parser) reading(m *memory) Reading {
 	if control&controlTime != 0 {
 		r.At += p.instant()
 	}
-	r.Value = math.Float64frombits(t.bits ^ p.word(control&controlBytes))
+	code := control & controlBytes
+	r.Mark = t.mark
+	if code == markCode {
+		two := p.take(2)
+		if p.bad || two[0] == t.mark {
+			p.bad = true
+			return Reading{}
+		}
+		r.Mark, code = two[0], two[1]
+	}
+	r.Value = math.Float64frombits(t.bits ^ p.word(code))
 	m.learn(t, r)
 	return r
 }

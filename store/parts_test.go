@@ -78,7 +78,7 @@ func TestFirstLayoutMinutes(t *testing.T) {
 		for _, f := range old.rare() {
 			*f.float = 0
 		}
-		old.Systematic, old.Random = [Shares]float64{}, 0
+		old.Systematic, old.Random, old.Uncertain = [Shares]float64{}, 0, 0
 		if want := []Minute{old, beside.kept()}; err != nil || !sameMinutes(got, want) {
 			t.Fatalf("%+v, %v; want %+v", got, err, want)
 		}

@@ -18,6 +18,10 @@ const (
 	controlTime    = 1 << 6
 	controlStamped = 1 << 5
 	controlBytes   = 1<<5 - 1
+
+	// markCode stands in the place of a value's code where the mark is not that of the
+	// tag's reading before: the mark follows, and then the code.
+	markCode = controlBytes
 )
 
 var castagnoli = crc32.MakeTable(crc32.Castagnoli)
@@ -61,12 +65,19 @@ func appendReading(b []byte, r Reading, m *memory) []byte {
 	}
 	word := math.Float64bits(r.Value) ^ t.bits
 	code, shift, count := valueCode(word)
-	b = append(b, control|code)
+	if r.Mark != t.mark {
+		b = append(b, control|markCode)
+	} else {
+		b = append(b, control|code)
+	}
 	if control&controlTag != 0 {
 		b = binary.AppendUvarint(b, uint64(r.Tag))
 	}
 	if control&controlTime != 0 {
 		b = appendInstant(b, late)
+	}
+	if r.Mark != t.mark {
+		b = append(b, r.Mark, code)
 	}
 	for word >>= shift; count > 0; count-- {
 		b = append(b, byte(word))

@@ -20,7 +20,7 @@ func bitsOf(beats []Beat) (all []uint64) {
 			if r.Stamped {
 				stamped = 1
 			}
-			all = append(all, uint64(r.Tag), uint64(r.At), math.Float64bits(r.Value), stamped)
+			all = append(all, uint64(r.Tag), uint64(r.At), math.Float64bits(r.Value), stamped, uint64(r.Mark))
 		}
 	}
 	return all
@@ -51,8 +51,12 @@ var anyReading = rapid.Custom(func(t *rapid.T) Reading {
 	return Reading{
 		Tag: rapid.OneOf(rapid.Uint32Range(0, 4), rapid.Uint32()).Draw(t, "tag"),
 		At:  anyInstant.Draw(t, "at"), Value: anyValue.Draw(t, "value"), Stamped: rapid.Bool().Draw(t, "stamped"),
+		Mark: anyMark.Draw(t, "mark"),
 	}
 })
+
+// anyMark is mostly 0, as marks are.
+var anyMark = rapid.OneOf(rapid.Just(uint8(0)), rapid.Just(uint8(0)), rapid.SampledFrom([]uint8{66, 132}), rapid.Uint8())
 
 var anyBeat = rapid.Custom(func(t *rapid.T) Beat {
 	return Beat{Through: anyInstant.Draw(t, "through"), Readings: rapid.SliceOfN(anyReading, 0, 8).Draw(t, "readings")}
@@ -141,8 +145,11 @@ func FuzzParsers(f *testing.F) {
 	f.Add((&span{first: 1, last: 2}).name(), []byte{})
 	f.Add([]byte{}, make([]byte, 24))
 	f.Fuzz(func(t *testing.T, key, value []byte) {
-		if all, err := parseRegisters(value); err == nil && !slices.Equal(appendRegisters(nil, all), value) {
-			t.Errorf("registers %+v are % x, were % x", all, appendRegisters(nil, all), value)
+		if all, err := parseRegisters(value); err == nil {
+			again, err := parseRegisters(appendRegisters(nil, all))
+			if err != nil || !slices.Equal(appendRegisters(nil, again), appendRegisters(nil, all)) {
+				t.Errorf("registers %+v were read again as %+v, %v", all, again, err)
+			}
 		}
 		if s, err := parseName(key); err == nil && !slices.Equal(s.name(), key) {
 			t.Errorf("group %+v is % x, was % x", s, s.name(), key)
@@ -188,7 +195,7 @@ func floatsOf(m *Minute) (all []*float64) {
 	for i := range m.Systematic {
 		all = append(all, &m.Systematic[i])
 	}
-	return append(all, &m.Random)
+	return append(all, &m.Random, &m.Uncertain)
 }
 
 // minuteBits is a minute as numbers that compare by the bit.

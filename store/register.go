@@ -9,20 +9,23 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// registerFloats is how many floats a register holds, firstRegisterFloats how many of
-// them the first layout knew.
+// registerFloats is how many floats a register holds, earlyRegisterFloats how many of
+// them those hold that do not say how many, and firstRegisterFloats how many the first
+// layout knew.
 const (
-	registerFloats      = 7
+	registerFloats      = 8
+	earlyRegisterFloats = 7
 	firstRegisterFloats = 4
 )
 
 // floats lists the fields in the order in which they are stored.
 func (r *Register) floats() [registerFloats]*float64 {
-	return [...]*float64{&r.Given, &r.Taken, &r.Measured, &r.Missing, &r.Bridged, &r.BridgedGiven, &r.BridgedTaken}
+	return [...]*float64{&r.Given, &r.Taken, &r.Measured, &r.Missing, &r.Bridged, &r.BridgedGiven, &r.BridgedTaken, &r.Uncertain}
 }
 
 // appendRegisters writes all registers as one value, so that none can be missing
-// unnoticed.
+// unnoticed, and how many floats each has: an odd number of bytes in all, where those
+// that do not say it have an even one.
 func appendRegisters(b []byte, all []Register) []byte {
 	for _, r := range all {
 		b = binary.LittleEndian.AppendUint32(b, r.Load)
@@ -30,19 +33,26 @@ func appendRegisters(b []byte, all []Register) []byte {
 			b = binary.LittleEndian.AppendUint64(b, math.Float64bits(*f))
 		}
 	}
+	b = append(b, registerFloats)
 	return binary.LittleEndian.AppendUint32(b, checksum(keyRegisters, b))
 }
 
 func parseRegisters(value []byte) ([]Register, error) {
-	return parseRegistersOf(value, registerFloats)
+	return parseRegistersOf(value, earlyRegisterFloats)
 }
 
-// parseRegistersOf reads registers of the first few floats.
+// parseRegistersOf reads registers, of the first few floats where they do not say how many.
 func parseRegistersOf(value []byte, floats int) ([]Register, error) {
-	registerBytes := 4 + 8*floats
 	n := len(value) - 4
-	if n < 0 || n%registerBytes != 0 ||
-		binary.LittleEndian.Uint32(value[n:]) != checksum(keyRegisters, value[:n]) {
+	if n < 0 || binary.LittleEndian.Uint32(value[n:]) != checksum(keyRegisters, value[:n]) {
+		return nil, errRecord
+	}
+	if n%2 != 0 {
+		n--
+		floats = int(value[n])
+	}
+	registerBytes := 4 + 8*floats
+	if floats > registerFloats || n%registerBytes != 0 {
 		return nil, errRecord
 	}
 	all := make([]Register, n/registerBytes)

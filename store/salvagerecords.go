@@ -396,7 +396,7 @@ func (z *salvage) reserved(r *refit) []byte {
 
 func (z *salvage) registers() []byte {
 	var all []byte
-	for _, floats := range []int{registerFloats, firstRegisterFloats} {
+	for _, floats := range []int{earlyRegisterFloats, firstRegisterFloats} {
 		z.value("registers", keyRegisters, func(v []byte) bool {
 			known, err := parseRegistersOf(v, floats)
 			if err == nil && all == nil {

@@ -71,11 +71,24 @@ func plant(from int64, seconds, tags int) []Beat {
 		for tag := i % 10; tag < tags; tag += 10 {
 			beats[i].Readings = append(beats[i].Readings, Reading{
 				Tag: uint32(tag), At: at, Stamped: true,
+				Mark:  plantMark(at/second, tag),
 				Value: 273.15 + math.Round(100*(60+5*math.Sin(float64(at/second+int64(tag))/50)))/100,
 			})
 		}
 	}
 	return beats
+}
+
+// plantMark is what plant marks now and then: readings that last for a while as doubted, and
+// one alone as bad.
+func plantMark(at int64, tag int) uint8 {
+	switch {
+	case at/100%23 == int64(tag%23):
+		return 65
+	case at/10%57 == int64(tag%57):
+		return 130
+	}
+	return 0
 }
 
 // TestResume commits batches, some with a checkpoint, and finds after each
