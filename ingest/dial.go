@@ -12,7 +12,7 @@ import (
 // dial opens a connection to the broker, with TLS where the address asks for
 // it. Certificate files are read anew, and proxy variables of the environment
 // are left aside: a gateway's service talks to the broker it was told.
-func (s *Session) dial(ctx context.Context) (*link, error) {
+func (s *Session) dial(ctx context.Context) (net.Conn, error) {
 	ctx, cancel := context.WithTimeout(ctx, s.o.ConnectTimeout)
 	defer cancel()
 	var plain net.Dialer
@@ -21,14 +21,14 @@ func (s *Session) dial(ctx context.Context) (*link, error) {
 		return nil, err
 	}
 	if !s.broker.tls {
-		return newLink(raw, s.o.ConnectTimeout), nil
+		return raw, nil
 	}
 	secure, err := s.handshake(ctx, raw)
 	if err != nil {
 		_ = raw.Close()
 		return nil, fmt.Errorf("tls: %w", err)
 	}
-	return newLink(secure, s.o.ConnectTimeout), nil
+	return secure, nil
 }
 
 func (s *Session) handshake(ctx context.Context, raw net.Conn) (net.Conn, error) {

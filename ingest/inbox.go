@@ -17,14 +17,18 @@ type Received struct {
 // [Session.Ack].
 func (r Received) Acknowledgeable() bool { return r.from != nil }
 
-// acknowledger is a message of the client library.
-type acknowledger interface{ Ack() }
+// acknowledger is the connection that messages came on.
+type acknowledger interface{ acknowledge(packets []byte) }
 
 // message is one that the broker keeps until it is acknowledged.
 type message struct {
-	acknowledger
-	open int // readings not yet stored
+	by     acknowledger
+	answer answer
+	open   int // readings not yet stored
 }
+
+// together is how many acknowledgements are sent at a time: by one write.
+const together = 1000
 
 // inbox holds readings until they are taken, and messages until they are
 // acknowledged: in the order of their arrival (MQTT 3.1.1, section 4.6), so a
@@ -42,7 +46,8 @@ type inbox struct {
 	mark     int           // unacknowledged messages at which reached is told; 0: never
 	reached  chan struct{} // one slot: so many wait
 
-	sending sync.Mutex // one acknowledger at a time, for the order
+	sending sync.Mutex // one at a time acknowledges, for the order
+	answers []byte     // being sent
 }
 
 func newInbox(limit int, patience time.Duration) *inbox {
@@ -62,7 +67,7 @@ func (b *inbox) reconnect() {
 // false, the message must not be acknowledged; those that follow on the same
 // connection then stay with the broker too, so that order is kept. m is nil for
 // a message that cannot be acknowledged; if there is no room, it is lost.
-func (b *inbox) put(ctx context.Context, m acknowledger, readings []Outcome) bool {
+func (b *inbox) put(ctx context.Context, m *message, readings []Outcome) bool {
 	if ok, wait := b.offer(m, readings); ok || !wait {
 		return ok
 	}
@@ -84,7 +89,7 @@ func (b *inbox) put(ctx context.Context, m acknowledger, readings []Outcome) boo
 
 // offer adds the readings if there is room; else wait tells whether to try
 // again.
-func (b *inbox) offer(m acknowledger, outcomes []Outcome) (ok, wait bool) {
+func (b *inbox) offer(m *message, outcomes []Outcome) (ok, wait bool) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	n := accepted(outcomes)
@@ -92,15 +97,14 @@ func (b *inbox) offer(m acknowledger, outcomes []Outcome) (ok, wait bool) {
 		b.left = b.left || (b.crowded && m != nil)
 		return false, !b.left && !b.crowded
 	}
-	var from *message
 	if m != nil {
-		from = &message{acknowledger: m, open: n}
-		b.unacked = append(b.unacked, from)
+		m.open = n
+		b.unacked = append(b.unacked, m)
 		b.tell()
 	}
 	for i := range outcomes {
 		if outcomes[i].Refusal == nil {
-			b.readings = append(b.readings, Received{Reading: outcomes[i].Reading, from: from})
+			b.readings = append(b.readings, Received{Reading: outcomes[i].Reading, from: m})
 		}
 	}
 	return true, false
@@ -137,7 +141,7 @@ func accepted(outcomes []Outcome) int {
 	return n
 }
 
-func (b *inbox) leave(m acknowledger) bool {
+func (b *inbox) leave(m *message) bool {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	b.crowded = true
@@ -173,26 +177,33 @@ func (b *inbox) stored(batch []Received) {
 	b.acknowledge()
 }
 
-// acknowledge sends what is due, from the oldest message on. The library's own
-// locks are never taken under mu.
+// acknowledge sends what is due, from the oldest message on. Nothing is written
+// under mu.
 func (b *inbox) acknowledge() {
 	b.sending.Lock()
 	defer b.sending.Unlock()
-	for m := b.due(); m != nil; m = b.due() {
-		m.Ack()
+	for by := b.due(); by != nil; by = b.due() {
+		by.acknowledge(b.answers)
 	}
 }
 
-func (b *inbox) due() *message {
+// due moves what is due next to answers, and returns who sends it; nil: nothing is.
+func (b *inbox) due() acknowledger {
 	b.mu.Lock()
 	defer b.mu.Unlock()
-	if len(b.unacked) == 0 || b.unacked[0].open > 0 {
+	b.answers = b.answers[:0]
+	n := 0
+	for n < min(len(b.unacked), together) && b.unacked[n].open == 0 && b.unacked[n].by == b.unacked[0].by {
+		b.answers = append(b.answers, b.unacked[n].answer[:]...)
+		n++
+	}
+	if n == 0 {
 		return nil
 	}
-	m := b.unacked[0]
-	b.unacked[0] = nil
-	b.unacked = b.unacked[1:]
-	return m
+	by := b.unacked[0].by
+	clear(b.unacked[:n])
+	b.unacked = b.unacked[n:]
+	return by
 }
 
 func (b *inbox) waiting() int {

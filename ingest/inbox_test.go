@@ -11,12 +11,16 @@ import (
 // acks notes acknowledgements in their order.
 type acks struct{ sent []int }
 
-type numbered struct {
-	to *acks
-	n  int
+func (a *acks) acknowledge(packets []byte) {
+	for p := range slices.Chunk(packets, len(answer{})) {
+		a.sent = append(a.sent, int(p[2])<<8|int(p[3]))
+	}
 }
 
-func (m numbered) Ack() { m.to.sent = append(m.to.sent, m.n) }
+// numbered is a message with an identifier.
+func numbered(by *acks, id int) *message {
+	return &message{by: by, answer: (&delivery{qos: 1, id: uint16(id)}).answer()}
+}
 
 // values are the outcomes of a message with n good readings and one refusal.
 func values(n int) []Outcome {
@@ -27,7 +31,7 @@ func values(n int) []Outcome {
 	return out
 }
 
-func put(t *testing.T, b *inbox, m acknowledger, n int) {
+func put(t *testing.T, b *inbox, m *message, n int) {
 	t.Helper()
 	if !b.put(t.Context(), m, values(n)) {
 		t.Fatalf("no room for message %v with %d readings", m, n)
@@ -36,10 +40,10 @@ func put(t *testing.T, b *inbox, m acknowledger, n int) {
 
 func TestAcknowledgedOnceInOrder(t *testing.T) {
 	b, got := newInbox(100, time.Second), &acks{}
-	put(t, b, numbered{got, 1}, 2) // two readings
-	put(t, b, numbered{got, 2}, 0) // refused
+	put(t, b, numbered(got, 1), 2) // two readings
+	put(t, b, numbered(got, 2), 0) // refused
 	put(t, b, nil, 1)              // cannot be acknowledged
-	put(t, b, numbered{got, 3}, 1)
+	put(t, b, numbered(got, 3), 1)
 	b.acknowledge()
 	batch, _ := b.take(nil)
 	if len(batch) != 4 || b.waiting() != 3 || len(got.sent) != 0 {
@@ -59,10 +63,10 @@ func TestAcknowledgedOnceInOrder(t *testing.T) {
 
 func TestReconnectionDropsAcknowledgements(t *testing.T) {
 	b, got := newInbox(100, time.Second), &acks{}
-	put(t, b, numbered{got, 1}, 1)
+	put(t, b, numbered(got, 1), 1)
 	old, _ := b.take(nil)
 	b.reconnect()
-	put(t, b, numbered{got, 101}, 1) // the same again
+	put(t, b, numbered(got, 101), 1) // the same again
 	b.stored(old)
 	if len(got.sent) != 0 || b.waiting() != 1 {
 		t.Errorf("sent %v, %d waiting after the old copy was stored; want none, 1", got.sent, b.waiting())
@@ -77,24 +81,24 @@ func TestReconnectionDropsAcknowledgements(t *testing.T) {
 func TestFullInbox(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
 		b, got := newInbox(2, time.Second), &acks{}
-		put(t, b, numbered{got, 1}, 2)
+		put(t, b, numbered(got, 1), 2)
 		begin := time.Now()
-		if b.put(t.Context(), numbered{got, 2}, values(1)) || time.Since(begin) != time.Second {
+		if b.put(t.Context(), numbered(got, 2), values(1)) || time.Since(begin) != time.Second {
 			t.Fatalf("message 2 was let in, or gave up after %v; want refused after 1s", time.Since(begin))
 		}
-		if b.put(t.Context(), numbered{got, 3}, values(1)) || time.Since(begin) != time.Second {
+		if b.put(t.Context(), numbered(got, 3), values(1)) || time.Since(begin) != time.Second {
 			t.Fatal("message 3 was let in or waited; want refused at once")
 		}
 		batch, left := b.take(nil)
 		if !left || len(batch) != 2 {
 			t.Fatalf("took %d, left %v; want 2 and messages left with the broker", len(batch), left)
 		}
-		if b.put(t.Context(), numbered{got, 4}, values(1)) {
+		if b.put(t.Context(), numbered(got, 4), values(1)) {
 			t.Fatal("message 4 overtook those left with the broker")
 		}
 		put(t, b, nil, 1) // has no broker to come from again
 		b.reconnect()
-		put(t, b, numbered{got, 2}, 1)
+		put(t, b, numbered(got, 2), 1)
 		if _, left := b.take(nil); left {
 			t.Error("still left after the new connection")
 		}
@@ -104,16 +108,16 @@ func TestFullInbox(t *testing.T) {
 func TestRoomIsWaitedFor(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
 		b, got := newInbox(2, time.Second), &acks{}
-		put(t, b, numbered{got, 1}, 2)
+		put(t, b, numbered(got, 1), 2)
 		done := make(chan bool)
-		go func() { done <- b.put(t.Context(), numbered{got, 2}, values(2)) }()
+		go func() { done <- b.put(t.Context(), numbered(got, 2), values(2)) }()
 		synctest.Wait()
 		b.take(nil)
 		if !<-done {
 			t.Error("refused although room was made")
 		}
 		ctx, cancel := context.WithCancel(t.Context())
-		go func() { done <- b.put(ctx, numbered{got, 3}, values(2)) }()
+		go func() { done <- b.put(ctx, numbered(got, 3), values(2)) }()
 		synctest.Wait()
 		cancel()
 		if <-done {
@@ -137,8 +141,8 @@ func TestReachedTells(t *testing.T) {
 		}
 	}
 	b, got := newInbox(100, time.Second), &acks{}
-	put(t, b, numbered{got, 1}, 1)
-	put(t, b, numbered{got, 2}, 1)
+	put(t, b, numbered(got, 1), 1)
+	put(t, b, numbered(got, 2), 1)
 	if told(b) {
 		t.Error("told without being asked")
 	}
@@ -148,12 +152,12 @@ func TestReachedTells(t *testing.T) {
 	if b.tellAt(2); told(b) {
 		t.Error("told twice")
 	}
-	if put(t, b, numbered{got, 3}, 1); !told(b) {
+	if put(t, b, numbered(got, 3), 1); !told(b) {
 		t.Error("not told that there are more")
 	}
 	batch, _ := b.take(nil)
 	b.stored(batch)
-	if put(t, b, numbered{got, 4}, 1); told(b) {
+	if put(t, b, numbered(got, 4), 1); told(b) {
 		t.Error("told though one waits")
 	}
 }

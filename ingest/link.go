@@ -2,7 +2,6 @@ package ingest
 
 import (
 	"bufio"
-	"errors"
 	"fmt"
 	"io"
 	"net"
@@ -13,11 +12,14 @@ import (
 
 // link is a connection to the broker with what the client library leaves out:
 // buffered reads, a limit for every write, and a bound on what one packet makes
-// the library allocate.
+// us allocate. Messages and their acknowledgements do not go through the library,
+// where seven goroutines pass them on one by one; waking those cost more than all
+// that is done with a reading.
 type link struct {
 	net.Conn
-	in      clipper
+	in      inflow
 	timeout time.Duration
+	failed  atomic.Pointer[error] // of the first write that did
 	cause   atomic.Pointer[error] // why we ended it
 	parting atomic.Bool           // the next Close follows our goodbye
 	closing sync.Once
@@ -26,8 +28,11 @@ type link struct {
 
 const readBuffer = 64 << 10 // bytes
 
-func newLink(c net.Conn, writeTimeout time.Duration) *link {
-	return &link{Conn: c, in: clipper{r: bufio.NewReaderSize(c, readBuffer)}, timeout: writeTimeout}
+// newLink gives each message to deliver, in the goroutine that reads.
+func newLink(c net.Conn, writeTimeout time.Duration, deliver func(*link, *delivery)) *link {
+	l := &link{Conn: c, timeout: writeTimeout}
+	l.in = inflow{r: bufio.NewReaderSize(c, readBuffer), deliver: func(d *delivery) { deliver(l, d) }}
+	return l
 }
 
 func (l *link) Read(p []byte) (int, error) {
@@ -39,12 +44,32 @@ func (l *link) Read(p []byte) (int, error) {
 }
 
 // Write fails when the peer takes nothing for the timeout; without it a dead
-// link blocks the library's detection of dead links.
+// link blocks the library's detection of dead links. No write follows one that
+// failed, for that may have ended within a packet.
 func (l *link) Write(p []byte) (int, error) {
+	if failed := l.failed.Load(); failed != nil {
+		return 0, *failed
+	}
 	if err := l.SetWriteDeadline(time.Now().Add(l.timeout)); err != nil {
 		return 0, err
 	}
-	return l.Conn.Write(p)
+	n, err := l.Conn.Write(p)
+	if err != nil {
+		l.failed.CompareAndSwap(nil, &err)
+	}
+	return n, err
+}
+
+// acknowledge sends acknowledgements. If they cannot be sent the connection has
+// ended, and the broker delivers again what it got none for. Nothing may follow
+// our goodbye: MQTT 3.1.1, section 3.14.4.
+func (l *link) acknowledge(packets []byte) {
+	if l.parting.Load() {
+		return
+	}
+	if _, err := l.Write(packets); err != nil {
+		l.end(fmt.Errorf("acknowledge: %w", err))
+	}
 }
 
 // end makes the library lose this connection for a reason; a plain Close it
@@ -76,94 +101,4 @@ func (l *link) part() {
 	if ok && half.CloseWrite() == nil && l.SetReadDeadline(time.Now().Add(parted)) == nil {
 		_, _ = io.Copy(io.Discard, l.Conn) // until the broker closes, or the deadline
 	}
-}
-
-// maxPacket is the longest body of an inbound packet: topic with its length,
-// packet identifier, and a payload one byte longer than is read.
-const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
-
-// clipper passes MQTT packets on (MQTT 3.1.1, section 2.2). It cuts a PUBLISH
-// beyond maxPacket, which may announce 256 MiB, so that it arrives as a message
-// with a payload too large and can be refused and acknowledged; otherwise it
-// would come again at every reconnection.
-type clipper struct {
-	r    *bufio.Reader
-	room [5]byte
-	head []byte // of the packet, yet to be passed on
-	body int    // bytes to pass on after it
-	skip int    // bytes to leave out after these
-}
-
-func (c *clipper) Read(p []byte) (int, error) {
-	if len(c.head) == 0 && c.body == 0 {
-		if err := c.next(); err != nil {
-			return 0, err
-		}
-	}
-	if len(c.head) > 0 {
-		n := copy(p, c.head)
-		c.head = c.head[n:]
-		return n, nil
-	}
-	n, err := c.r.Read(p[:min(len(p), c.body)])
-	c.body -= n
-	return n, err
-}
-
-const publish = 3 // packet type: MQTT 3.1.1, table 2.1
-
-// next reads the fixed header of a packet.
-func (c *clipper) next() error {
-	for c.skip > 0 {
-		n, err := c.r.Discard(c.skip)
-		c.skip -= n
-		if err != nil {
-			return err
-		}
-	}
-	kind, err := c.r.ReadByte()
-	if err != nil {
-		return err
-	}
-	length, err := c.length()
-	if err != nil {
-		return err
-	}
-	if length > maxPacket {
-		if kind>>4 != publish {
-			return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", kind>>4, length, maxPacket)
-		}
-		c.skip = length - maxPacket
-		length = maxPacket
-	}
-	c.body = length
-	c.head = appendLength(append(c.room[:0], kind), length)
-	return nil
-}
-
-// length reads a remaining length: MQTT 3.1.1, section 2.2.3.
-func (c *clipper) length() (int, error) {
-	n := 0
-	for shift := 0; shift < 28; shift += 7 {
-		b, err := c.r.ReadByte()
-		if errors.Is(err, io.EOF) {
-			err = io.ErrUnexpectedEOF
-		}
-		if err != nil {
-			return 0, err
-		}
-		n |= int(b&0x7f) << shift
-		if b < 0x80 {
-			return n, nil
-		}
-	}
-	return 0, errors.New("packet length has more than four bytes; is this an MQTT broker?")
-}
-
-func appendLength(b []byte, n int) []byte {
-	for n >= 0x80 {
-		b = append(b, byte(n)|0x80)
-		n >>= 7
-	}
-	return append(b, byte(n))
 }

@@ -101,7 +101,7 @@ func (s *Session) Run(ctx context.Context) error {
 
 func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 	o := mqtt.NewClientOptions().AddBroker("tcp://" + s.broker.address()).SetProtocolVersion(4)
-	o.SetClientID(s.o.ClientID).SetCleanSession(false).SetAutoAckDisabled(true).SetOrderMatters(true)
+	o.SetClientID(s.o.ClientID).SetCleanSession(false)
 	o.SetKeepAlive(s.o.KeepAlive).SetPingTimeout(s.o.PingTimeout).SetConnectTimeout(s.o.ConnectTimeout)
 	o.SetAutoReconnect(true).SetMaxReconnectInterval(s.o.MaxBackoff)
 	o.SetConnectRetry(true).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
@@ -110,7 +110,6 @@ func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 		o.SetBinaryWill(s.o.Presence.Topic, s.will, 1, true)
 	}
 	o.SetCustomOpenConnectionFn(func(*url.URL, mqtt.ClientOptions) (net.Conn, error) { return s.open(ctx) })
-	o.SetDefaultPublishHandler(func(_ mqtt.Client, m mqtt.Message) { s.receive(ctx, m) })
 	o.SetOnConnectHandler(func(c mqtt.Client) { s.connected(ctx, c) })
 	o.SetConnectionLostHandler(func(_ mqtt.Client, err error) { s.lost(err) })
 	o.SetConnectionNotificationHandler(func(_ mqtt.Client, n mqtt.ConnectionNotification) {
@@ -145,32 +144,35 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 	s.inbox.reconnect()
 	s.outbox.connection(false)
 	s.tally.subscribed(0, nil)
-	l, err := s.dial(ctx)
+	conn, err := s.dial(ctx)
 	if err != nil {
 		s.dialErr.Store(&err)
 		return nil, err
 	}
+	l := newLink(conn, s.o.ConnectTimeout, func(l *link, d *delivery) { s.receive(ctx, l, d) })
 	s.link.Store(l)
 	return l, nil
 }
 
-// receive handles one message, in the library's goroutine and in order.
-func (s *Session) receive(ctx context.Context, m mqtt.Message) {
+// receive handles one message, in the goroutine that reads the connection it came
+// by, and in order.
+func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 	arrival := s.o.Now().UnixNano()
-	out, known := s.decoder.Decode(m.Topic(), m.Payload(), arrival, m.Retained(), s.outcomes[:0])
+	topic := string(d.topic)
+	out, known := s.decoder.Decode(topic, d.payload, arrival, d.retained, s.outcomes[:0])
 	s.outcomes = out
 	if !known && s.tally.unknown(arrival) {
-		s.o.Log.Warn("message on a topic that no tag reads; more of them are only counted", "topic", m.Topic())
+		s.o.Log.Warn("message on a topic that no tag reads; more of them are only counted", "topic", topic)
 	}
-	var ack acknowledger
-	if m.Qos() > 0 {
-		ack = m
+	var m *message
+	if d.qos > 0 {
+		m = &message{by: by, answer: d.answer()}
 	}
 	for i := range out {
-		out[i].InOrder, out[i].Retained = ack != nil && !m.Retained(), m.Retained()
+		out[i].InOrder, out[i].Retained = m != nil && !d.retained, d.retained
 	}
-	if !s.inbox.put(ctx, ack, out) {
-		s.overflow(out, m.Payload(), arrival)
+	if !s.inbox.put(ctx, m, out) {
+		s.overflow(out, d.payload, arrival)
 	}
 	for _, r := range s.tally.count(arrival, out) {
 		s.o.Log.Warn("message refused; more of this kind are only counted", "reason", r.Reason.String(), "refusal", r.Error())

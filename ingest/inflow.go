@@ -1,0 +1,117 @@
+package ingest
+
+import (
+	"bufio"
+	"errors"
+	"fmt"
+	"io"
+)
+
+// maxPacket is the longest body of an inbound packet: topic with its length,
+// packet identifier, and a payload one byte longer than is read.
+const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
+
+// inflow takes the messages out of a stream of MQTT packets (MQTT 3.1.1, section
+// 2.2), and passes the other packets on. It cuts a PUBLISH beyond maxPacket, which
+// may announce 256 MiB, so that it is delivered with a payload too large and can be
+// refused and acknowledged; otherwise it would come again at every reconnection.
+// The first packet is passed on whatever it is: the library judges it.
+type inflow struct {
+	r       *bufio.Reader
+	deliver func(*delivery)
+	message delivery // at hand
+	begun   bool     // the first packet has come
+	room    [5]byte
+	head    []byte // of the packet, yet to be passed on
+	body    int    // bytes to pass on after it
+}
+
+func (f *inflow) Read(p []byte) (int, error) {
+	for len(f.head) == 0 && f.body == 0 {
+		if err := f.next(); err != nil {
+			return 0, err
+		}
+	}
+	if len(f.head) > 0 {
+		n := copy(p, f.head)
+		f.head = f.head[n:]
+		return n, nil
+	}
+	n, err := f.r.Read(p[:min(len(p), f.body)])
+	f.body -= n
+	return n, err
+}
+
+const publish = 3 // packet type: MQTT 3.1.1, table 2.1
+
+// next takes a message, or the fixed header of another packet.
+func (f *inflow) next() error {
+	first, err := f.r.ReadByte()
+	if err != nil {
+		return err
+	}
+	length, err := f.length()
+	switch {
+	case err != nil:
+		return err
+	case first>>4 == publish && f.begun:
+		return f.take(first, length)
+	case length > maxPacket:
+		return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", first>>4, length, maxPacket)
+	}
+	f.begun = true
+	f.body = length
+	f.head = appendLength(append(f.room[:0], first), length)
+	return nil
+}
+
+// take delivers a message, which lies in the buffer of the reader where it fits.
+func (f *inflow) take(first byte, length int) error {
+	kept := min(length, maxPacket)
+	rest := length
+	body, err := f.r.Peek(kept)
+	if errors.Is(err, bufio.ErrBufferFull) {
+		body, rest = make([]byte, kept), length-kept
+		_, err = io.ReadFull(f.r, body)
+	}
+	if err == nil {
+		err = f.message.parse(first, body)
+	}
+	if err == nil {
+		f.deliver(&f.message)
+		_, err = f.r.Discard(rest)
+	}
+	return cutShort(err)
+}
+
+// cutShort tells an end within a packet from one between two.
+func cutShort(err error) error {
+	if errors.Is(err, io.EOF) {
+		return io.ErrUnexpectedEOF
+	}
+	return err
+}
+
+// length reads a remaining length: MQTT 3.1.1, section 2.2.3.
+func (f *inflow) length() (int, error) {
+	n := 0
+	for shift := 0; shift < 28; shift += 7 {
+		b, err := f.r.ReadByte()
+		if err != nil {
+			return 0, cutShort(err)
+		}
+		n |= int(b&0x7f) << shift
+		if b < 0x80 {
+			return n, nil
+		}
+	}
+	return 0, errors.New("packet length has more than four bytes; is this an MQTT broker?")
+}
+
+func appendLength(b []byte, n int) []byte {
+	for n >= 0x80 {
+		b = append(b, byte(n)|0x80)
+		n >>= 7
+	}
+	return append(b, byte(n))
+}
