@@ -19,6 +19,7 @@ const (
 type count struct {
 	At       int64 // stamp of the newest reading told; 0 before the first
 	Value    float64
+	Before   float64 // the reading before that
 	From, To int64   // grid points that reached the last reading but one, and the last
 	Amount   float64 // in the unit of the register
 	Known    bool    // false after one reading alone, a reset, or more than can be
@@ -90,6 +91,7 @@ func (e *Engine) counts(g int64) {
 			e.tell(b, g)
 		case g >= e.silentUntil(b.tag):
 			t.Count.From, t.Count.To, t.Count.Amount, t.Count.Known = t.Count.To, g, 0, true
+			t.Count.Before = t.Count.Value
 		}
 	}
 }
@@ -108,7 +110,7 @@ func (e *Engine) silentUntil(tag int) int64 {
 func (e *Engine) tell(b bounded, g int64) {
 	t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
 	was := t.Count
-	t.Count = count{At: t.Held.At, Value: t.Held.Value, From: was.To, To: g}
+	t.Count = count{At: t.Held.At, Value: t.Held.Value, Before: was.Value, From: was.To, To: g}
 	c := &t.Count
 	if was.At == 0 {
 		c.Why = fmt.Sprintf("counter %q has told one count, and a flow takes two", tag.Name)

@@ -16,12 +16,17 @@ type held struct {
 // then. It depends on nothing else.
 func (e *Engine) evaluate(load int, g int64) Figure {
 	if e.cfg.Loads[load].Vessel != nil {
-		return e.vessel(load, g)
+		return e.vessel(load, g, new(vesselSteps))
 	}
+	return e.stream(load, g, new(steps))
+}
+
+// stream is evaluate for a stream; s is left with what the figure was worked from, as far as
+// it came.
+func (e *Engine) stream(load int, g int64, s *steps) Figure {
 	q := &e.equations[load]
 	f := Figure{At: g, Until: math.MaxInt64}
-	var x State
-	var d [PartCp]doubt
+	x, d := &s.x, &s.d
 	if !e.flow(load, &f, &x.Flow, &d[PartFlow]) {
 		return f
 	}
@@ -39,23 +44,23 @@ func (e *Engine) evaluate(load int, g int64) Figure {
 		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &d[PartHumidity])) &&
 		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(doubt))) &&
 		(!q.HasPump || e.read(&f, q.Pump, &x.Pump, &d[PartPump])) &&
-		e.delay(load, &f, &x)
-	var uRise float64
-	if !ok || !e.rise(load, &f, &x, &uRise) {
+		e.delay(load, &f, s)
+	if !ok || !e.rise(load, &f, s) {
 		return f
 	}
 	if q.OutletPressure == q.Pressure {
 		d[PartOutletPressure] = doubt{} // moves with the inlet's
 	}
-	f = q.figure(f, &x, &d)
-	q.storedSpread(&f, &x, uRise)
+	f = q.figure(f, s)
+	q.storedSpread(&f, s)
 	return f
 }
 
 // idle reports whether nothing is taken to flow.
 func (q *equation) idle(flow float64) bool { return flow == 0 || math.Abs(flow) <= q.IdleBelow }
 
-func (q *equation) figure(f Figure, x *State, d *[PartCp]doubt) Figure {
+func (q *equation) figure(f Figure, s *steps) Figure {
+	x := &s.x
 	m, err := q.medium(x)
 	if err != nil {
 		return f.fail(OutOfRange, err.Error())
@@ -64,11 +69,11 @@ func (q *equation) figure(f Figure, x *State, d *[PartCp]doubt) Figure {
 	if why != "" {
 		return f.fail(Saturation, why)
 	}
-	r, err := q.work(&m, x)
-	if err != nil {
+	r := &s.r
+	if *r, err = q.work(&m, x); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
-	if err := q.spread(&f, &m, x, d, &r); err != nil {
+	if err := q.spread(&f, &m, s); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
 	f.Duty, f.MassFlow, f.Density, f.Remark = r.Duty, r.MassFlow, r.Density, remark

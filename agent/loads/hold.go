@@ -80,9 +80,13 @@ func (q *equation) displacement(m *medium, x *State) (float64, error) {
 // marks f and returns false where that is not known: until the hold has been filled once,
 // after the start and after each time in which flow or inlet were not known, the load is
 // [Fitting], because to compare with what enters would book what the content stores.
-func (e *Engine) delay(load int, f *Figure, x *State) bool {
-	q, l := &e.equations[load], &e.loads[load]
-	if q.Hold == 0 {
+func (e *Engine) delay(load int, f *Figure, s *steps) bool {
+	q, l, x := &e.equations[load], &e.loads[load], &s.x
+	switch {
+	case q.Hold == 0:
+		return true
+	case s.again:
+		x.Inlet = l.left
 		return true
 	}
 	if why, _ := q.phase(&q.declared, x); why != "" {
@@ -99,6 +103,7 @@ func (e *Engine) delay(load int, f *Figure, x *State) bool {
 		return false
 	}
 	x.Inlet = l.Hold.leaving(passes*float64(e.cfg.Grid)/1e9, x.Inlet)
+	l.left = x.Inlet
 	return true
 }
 

@@ -31,7 +31,7 @@ func (o *operating) figure(t *testing.T) Figure {
 	if err != nil {
 		t.Fatal(err)
 	}
-	f := q.figure(Figure{}, &o.x, &o.inputs)
+	f := q.figure(Figure{}, &steps{x: o.x, d: o.inputs})
 	if !f.Measured() {
 		t.Fatalf("%s: %v (%s)", o.name, f.Fault, f.Reason)
 	}

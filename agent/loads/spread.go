@@ -40,10 +40,11 @@ func (p Part) String() string {
 // that those that are left are independent of each other and add as root of the sum of
 // squares. The error is that of the heat equation where an input can be moved neither way
 // inside the fluid's range.
-func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt, centre *Result) error {
+func (q *equation) spread(f *Figure, m *medium, s *steps) error {
+	x, centre := &s.x, &s.r
 	var random float64
-	for part := range inputs {
-		d := &inputs[part]
+	for part := range s.d {
+		d := &s.d[part]
 		if *d == (doubt{}) {
 			continue
 		}
@@ -53,6 +54,7 @@ func (q *equation) spread(f *Figure, m *medium, x *State, inputs *[PartCp]doubt,
 			return err
 		}
 		c := half / u
+		s.c[part] = c
 		if q.Pair > 0 && (Part(part) == PartInlet || Part(part) == PartOutlet) {
 			f.Share[part] = c * d.lasting(q.Pair)
 			f.Share[PartPair] += c * d.accuracy * math.Sqrt(q.Pair)

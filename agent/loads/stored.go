@@ -8,7 +8,7 @@ import (
 // rise puts in place how fast the content between the thermometers warms, K/s: the mean of
 // the fitted rates of inlet and outlet, with its standard uncertainty. It marks f and
 // returns false where too few readings tell.
-func (e *Engine) rise(load int, f *Figure, x *State, u *float64) bool {
+func (e *Engine) rise(load int, f *Figure, s *steps) bool {
 	q := &e.equations[load]
 	if q.Stored == 0 {
 		return true
@@ -24,8 +24,9 @@ func (e *Engine) rise(load int, f *Figure, x *State, u *float64) bool {
 			*f = f.fail(Fitting, fmt.Sprintf("tag %q: %s", tag.Name, why))
 			return false
 		}
-		x.Rise += line.Rate / 2
-		*u = math.Hypot(*u, line.uncertainty(tag)/2)
+		s.x.Rise += line.Rate / 2
+		s.uRise = math.Hypot(s.uRise, line.uncertainty(tag)/2)
+		s.lines[i] = line
 	}
 	return true
 }
@@ -49,17 +50,17 @@ func (q *equation) correction(x *State) float64 {
 }
 
 // storedSpread adds the uncertainty of the stored heat: of C, which drawings tell, to what
-// lasts, and of the rise, u in K/s, to what does not. Over a long time what is stored adds
+// lasts, and of the rise to what does not. Over a long time what is stored adds
 // up to nothing, so that the variance is an upper bound.
-func (q *equation) storedSpread(f *Figure, x *State, u float64) {
+func (q *equation) storedSpread(f *Figure, s *steps) {
 	if q.Stored == 0 || !f.Measured() {
 		return
 	}
-	f.Share[PartContent] = -q.Stored * x.Rise * shellHalf / math.Sqrt(3)
+	f.Share[PartContent] = -q.Stored * s.x.Rise * shellHalf / math.Sqrt(3)
 	if !q.Gives {
 		f.Share[PartContent] *= -1
 	}
-	random := q.Stored * u
+	random := q.Stored * s.uRise
 	f.Random = math.Hypot(f.Random, random)
 	f.Variance += random * random * float64(q.StoredOver) / 1e9
 	f.Uncertainty = math.Sqrt(f.Uncertainty*f.Uncertainty + f.Share[PartContent]*f.Share[PartContent] + random*random)

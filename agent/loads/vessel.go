@@ -24,6 +24,7 @@ type heated struct {
 	// ByContent and ByShell are the two parts of the duty, and ByCp how much of it goes
 	// with cp, W.
 	ByContent, ByShell, ByCp float64
+	Specific                 float64 // the specific heat that was taken, J/(kg K)
 }
 
 // work works the duty of a closed content:
@@ -59,6 +60,7 @@ func (v *Vessel) work(x *inside) (heated, error) {
 	if v.Gives {
 		rate = -rate
 	}
+	h.Specific = c
 	h.Capacity = h.Mass*c + v.Shell
 	h.Duty = h.Capacity * rate
 	h.ByContent, h.ByShell = h.Mass*c*rate, v.Shell*rate
@@ -73,12 +75,12 @@ const largestMass = 1e12
 // drawings: of a vessel's wall, of a pipe and its content (common practice, no source).
 const shellHalf = 0.1
 
-// vessel works the figure of a load that is a vessel at the grid point g.
-func (e *Engine) vessel(load int, g int64) Figure {
+// vessel works the figure of a load that is a vessel at the grid point g; s is left with
+// what it was worked from, as far as it came.
+func (e *Engine) vessel(load int, g int64, s *vesselSteps) Figure {
 	v, l := e.cfg.Loads[load].Vessel, &e.loads[load]
 	f := Figure{At: g, Until: math.MaxInt64}
-	var x inside
-	var d insideDoubt
+	x, d := &s.x, &s.d
 	if !e.read(&f, v.Temperature, &x.T, &d.T) ||
 		!e.read(&f, v.Pressure, &x.Pressure, &d.Pressure) ||
 		!e.read(&f, v.Content, &x.Content, &d.Content) {
@@ -86,16 +88,16 @@ func (e *Engine) vessel(load int, g int64) Figure {
 	}
 	tag := &e.cfg.Tags[v.Temperature.Tag]
 	f.Until = min(f.Until, l.Trends[ofTemperature].until(g))
-	line := l.Trends[ofTemperature].fit(g, tag.OnChange)
-	if why := line.short(v.Over); why != "" {
+	s.line = l.Trends[ofTemperature].fit(g, tag.OnChange)
+	if why := s.line.short(v.Over); why != "" {
 		return f.fail(Fitting, fmt.Sprintf("tag %q: %s", tag.Name, why))
 	}
 	if why := l.moving(v, g); why != "" {
 		return f.fail(Moving, why)
 	}
-	x.Mean, x.Rate = line.Mean, line.Rate
-	d.Rate, d.Gain = line.uncertainty(tag), math.Abs(tag.Accuracy.Rel)/math.Sqrt(3)
-	return v.figure(f, &e.equations[load].declared, &x, &d)
+	x.Mean, x.Rate = s.line.Mean, s.line.Rate
+	d.Rate, d.Gain = s.line.uncertainty(tag), math.Abs(tag.Accuracy.Rel)/math.Sqrt(3)
+	return v.figure(f, &e.equations[load].declared, s)
 }
 
 // moving says by how much the content changed over the span; it is empty where the
@@ -112,13 +114,14 @@ func (l *loadState) moving(v *Vessel, g int64) string {
 		lo, hi, float64(v.Over)/1e9, v.Still*100)
 }
 
-func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
+func (v *Vessel) figure(f Figure, m *medium, s *vesselSteps) Figure {
+	x, d, h := &s.x, &s.d, &s.h
 	why, remark := v.phase(m, x)
 	if why != "" {
 		return f.fail(Saturation, why)
 	}
-	h, err := v.work(x)
-	if err != nil {
+	var err error
+	if *h, err = v.work(x); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
 	f.Content, f.Mass, f.Rate, f.Pressure, f.Density = x.T, h.Mass, x.Rate, x.Pressure, h.Density
@@ -129,7 +132,7 @@ func (v *Vessel) figure(f Figure, m *medium, x *inside, d *insideDoubt) Figure {
 		return f
 	}
 	f.Duty = h.Duty
-	if err := v.spread(&f, m, x, d, &h); err != nil {
+	if err := v.spread(&f, m, s); err != nil {
 		return f.fail(OutOfRange, err.Error())
 	}
 	return f

@@ -18,7 +18,8 @@ type insideDoubt struct {
 // which heat capacity and density are taken. Both are in the share of the content, with
 // those of its amount and of the wall: all that is about the vessel and lasts. The error is
 // that of the heat equation where an input can be moved neither way.
-func (v *Vessel) spread(f *Figure, m *medium, x *inside, d *insideDoubt, h *heated) error {
+func (v *Vessel) spread(f *Figure, m *medium, s *vesselSteps) error {
+	x, d, h := &s.x, &s.d, &s.h
 	state, err1 := v.swing(x, h, d.T.lasting(0), func(y inside, by float64) inside { y.T += by; y.Mean += by; return y })
 	pressure, err2 := v.swing(x, h, d.Pressure.lasting(0), func(y inside, by float64) inside { y.Pressure += by; return y })
 	if err := errors.Join(err1, err2); err != nil {
@@ -28,8 +29,9 @@ func (v *Vessel) spread(f *Figure, m *medium, x *inside, d *insideDoubt, h *heat
 	if x.Content > 0 {
 		amount = h.ByContent / x.Content
 	}
-	about := [...]float64{state, amount * d.Content.lasting(0), h.ByShell * shellHalf / math.Sqrt(3), h.Duty * d.Gain}
-	f.Share[PartContent] = math.Copysign(math.Sqrt(sumOfSquares(about[:])), h.Duty)
+	s.amount = amount
+	s.about = [...]float64{state, amount * d.Content.lasting(0), h.ByShell * shellHalf / math.Sqrt(3), h.Duty * d.Gain}
+	f.Share[PartContent] = math.Copysign(math.Sqrt(sumOfSquares(s.about[:])), h.Duty)
 	f.Share[PartPressure] = pressure
 	u := m.property(x.Mean, x.Pressure)
 	f.Share[PartCp] = h.ByCp * u.cp
