@@ -11,6 +11,7 @@ import (
 	"time"
 
 	"heatreeve/agent/loads"
+	"heatreeve/ingest/quality"
 	"heatreeve/store"
 )
 
@@ -38,7 +39,7 @@ func minuteColumns() []string {
 		"start", "measured_s", "missing_s", "given_J", "taken_J",
 		"duty_W", "lowest_duty_W", "highest_duty_W", "duty_uncertainty_W",
 		"mass_flow_kg_per_s", "inlet_K", "outlet_K", "pressure_Pa", "content_K",
-		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "witness_counted_J", "witness_served_J",
+		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "uncertain_s", "witness_counted_J", "witness_served_J",
 		"random_variance_J2",
 	}
 	for p := range loads.Parts {
@@ -76,7 +77,7 @@ func (h *history) export(s Selection) (*export, error) {
 		x.zone = h.zone
 	}
 	kind, name, of := "tag", s.Tag, "reading"
-	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), "stamped"}; x.minutes {
+	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), truthColumn, qualityColumn, reasonColumn}; x.minutes {
 		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns()
 	}
 	if !x.minutes && h.units[s.Tag] == changedUnit {
@@ -168,6 +169,13 @@ func readingRow(r *rows, v *store.Reading) {
 	r.instant(v.At, readingTime)
 	r.number(v.Value)
 	r.truth(v.Stamped)
+	mark := quality.Mark(v.Mark)
+	r.word(mark.Quality().String())
+	if mark == quality.None {
+		r.none()
+	} else {
+		r.word(mark.String())
+	}
 }
 
 // minuteRow leaves out the means of a minute in which nothing was measured, and
@@ -183,7 +191,7 @@ func minuteRow(r *rows, m *store.Minute) {
 	for _, x := range [...]float64{m.Inlet, m.Outlet, m.Pressure, m.Content} {
 		r.meanIf(m.Measured > 0 && x != 0, x)
 	}
-	for _, x := range [...]float64{m.Bridged, m.BridgedGiven, m.BridgedTaken, m.Latent, m.Witness, m.Compared, m.Random} {
+	for _, x := range [...]float64{m.Bridged, m.BridgedGiven, m.BridgedTaken, m.Latent, m.Uncertain, m.Witness, m.Compared, m.Random} {
 		r.number(x)
 	}
 	for _, x := range m.Systematic[:loads.Parts] {

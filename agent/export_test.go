@@ -20,6 +20,7 @@ import (
 	"time"
 
 	"heatreeve/agent/loads"
+	"heatreeve/ingest/quality"
 	"heatreeve/store"
 )
 
@@ -43,6 +44,9 @@ func noted(t testing.TB, path string, n int) (*store.Store, []store.Reading) {
 			at -= int64(5 * time.Second)
 		}
 		r := store.Reading{Tag: ids[0], At: at, Value: 273.15 + math.Round(1000*math.Sin(float64(k)))/10, Stamped: k%4 != 0}
+		if k%50 < 10 {
+			r.Mark = []uint8{uint8(quality.Maintenance), uint8(quality.OffSpec), uint8(quality.Failed)}[k/50%3]
+		}
 		all = append(all, r)
 		b.Beats = append(b.Beats, store.Beat{Through: week.UnixNano() + int64(k)*int64(time.Second), Readings: []store.Reading{r, {Tag: ids[1], At: at, Value: 1e-7 * float64(k)}}})
 		if len(b.Beats) == 600 || k == n-1 {
@@ -114,7 +118,7 @@ func fromCSV(t *testing.T, text string, tag uint32) (all []store.Reading) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if !slices.Equal(records[0], []string{"time", "value_K", "stamped"}) {
+	if !slices.Equal(records[0], []string{"time", "value_K", "stamped", "quality", "reason"}) {
 		t.Errorf("header %q", records[0])
 	}
 	for _, f := range records[1:] {
@@ -124,9 +128,22 @@ func fromCSV(t *testing.T, text string, tag uint32) (all []store.Reading) {
 		if err := errors.Join(err, err2, err3); err != nil {
 			t.Fatal(err)
 		}
-		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: x, Stamped: stamped})
+		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: x, Stamped: stamped, Mark: markOf(t, f[3], f[4])})
 	}
 	return all
+}
+
+// markOf is the mark that an export tells by its quality and its reason.
+func markOf(t *testing.T, grade, reason string) uint8 {
+	t.Helper()
+	for n := range 256 {
+		m := quality.Mark(n)
+		if m.Quality().String() == grade && (m == quality.None && reason == "" || m != quality.None && m.String() == reason) {
+			return uint8(n)
+		}
+	}
+	t.Fatalf("no mark is %q for %q", grade, reason)
+	return 0
 }
 
 func fromJSON(t *testing.T, text string, tag uint32) (all []store.Reading) {
@@ -136,11 +153,17 @@ func fromJSON(t *testing.T, text string, tag uint32) (all []store.Reading) {
 			Time    time.Time `json:"time"`
 			Value   *float64  `json:"value_K"`
 			Stamped *bool     `json:"stamped"`
+			Quality string    `json:"quality"`
+			Reason  *string   `json:"reason"`
 		}
 		if err := json.Unmarshal([]byte(line), &v); err != nil || v.Value == nil || v.Stamped == nil {
 			t.Fatalf("%s: %v", line, err)
 		}
-		all = append(all, store.Reading{Tag: tag, At: v.Time.UnixNano(), Value: *v.Value, Stamped: *v.Stamped})
+		reason := ""
+		if v.Reason != nil {
+			reason = *v.Reason
+		}
+		all = append(all, store.Reading{Tag: tag, At: v.Time.UnixNano(), Value: *v.Value, Stamped: *v.Stamped, Mark: markOf(t, v.Quality, reason)})
 	}
 	return all
 }
@@ -153,15 +176,18 @@ func TestExportOfMinutes(t *testing.T) {
 		if k == 61 {
 			m = store.Minute{Missing: 60}
 		}
+		if k == 60 {
+			m.Uncertain = 17.5
+		}
 		return m, k != 62
 	}, "other", "ramp")
 	h := historyIn(t, db, "UTC")
 	parts := strings.Repeat(",0", int(loads.Parts))
 	text, err := exported(h, Selection{Load: "ramp", From: "2026-10-24T00:00", To: "2026-10-24T00:04"})
 	want := strings.Join(minuteColumns(), ",") + "\r\n" +
-		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0" + parts + "\r\n" +
-		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,,,0,0,0,0,0,0,0" + parts + "\r\n" +
-		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0" + parts + "\r\n"
+		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000,,0,0,0,0,17.5,0,0,0" + parts + "\r\n" +
+		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,,,0,0,0,0,0,0,0,0" + parts + "\r\n" +
+		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0,0" + parts + "\r\n"
 	if err != nil || text != want {
 		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
 	}
@@ -305,7 +331,7 @@ func TestExportOfDamage(t *testing.T) {
 	}
 	var b bytes.Buffer
 	x := &export{}
-	r := newRows(&b, false, []string{"time", "value_K", "stamped"})
+	r := newRows(&b, false, []string{"time", "value_K", "stamped", "quality", "reason"})
 	if err := each(t.Context(), x, r, all(nil, torn, nil, torn), readingRow); err != nil || r.count != 2 {
 		t.Errorf("%d rows, %v", r.count, err)
 	}
@@ -382,11 +408,11 @@ func TestUnitThatHasChanged(t *testing.T) {
 		server.Close()
 		shut()
 		read, readNote := extract("FT")
-		want := map[bool]string{true: "time,value_kg_per_s,stamped", false: "time,value_SI,stamped"}[i == 0]
+		want := map[bool]string{true: "time,value_kg_per_s,stamped,quality,reason", false: "time,value_SI,stamped,quality,reason"}[i == 0]
 		if asked != want || read != want || (readNote != "") != (i > 0) || askedNote != readNote {
 			t.Errorf("site %d: the agent says %s %q, the file %s %q; want %s", i, asked, askedNote, read, readNote, want)
 		}
-		if steady, note := extract("TI"); steady != "time,value_K,stamped" || note != "" {
+		if steady, note := extract("TI"); steady != "time,value_K,stamped,quality,reason" || note != "" {
 			t.Errorf("another tag: %s %q", steady, note)
 		}
 	}

@@ -12,12 +12,16 @@ import (
 
 const parquetFormat = "parquet"
 
-// truthColumn is the one column of booleans.
-const truthColumn = "stamped"
+// truthColumn is the one column of booleans, and these are those of text.
+const (
+	truthColumn   = "stamped"
+	qualityColumn = "quality"
+	reasonColumn  = "reason"
+)
 
 // parquetFile turns the lines of a CSV export, as [rows] writes them, into a Parquet file:
-// the first column is an instant, stamped is a boolean, and all others are numbers, null
-// where the field is empty. It is not whole until it is closed.
+// the first column is an instant, stamped is a boolean, quality and reason are text, and all
+// others are numbers. Text and numbers are null where the field is empty. It is not whole until it is closed.
 type parquetFile struct {
 	to      io.Writer
 	w       *parquet.Writer // nil before the line of names
@@ -71,6 +75,8 @@ func (f *parquetFile) begin(names []byte) {
 			c.Kind = parquet.Instant
 		case c.Name == truthColumn:
 			c.Kind = parquet.Truth
+		case c.Name == qualityColumn || c.Name == reasonColumn:
+			c.Kind = parquet.Text
 		}
 		f.columns = append(f.columns, c)
 	}
@@ -94,6 +100,8 @@ func (f *parquetFile) field(kind parquet.Kind, text []byte) error {
 		f.w.Truth(b)
 	case len(text) == 0:
 		f.w.Null()
+	case kind == parquet.Text:
+		f.w.Text(string(text))
 	default:
 		x, err := strconv.ParseFloat(string(text), 64)
 		if err != nil {

@@ -12,6 +12,7 @@ import (
 	"time"
 
 	"heatreeve/agent/parquet"
+	"heatreeve/ingest/quality"
 	"heatreeve/store"
 )
 
@@ -19,11 +20,18 @@ import (
 func directly(t *testing.T, value string, all []store.Reading) []byte {
 	t.Helper()
 	var b bytes.Buffer
-	w := parquet.NewWriter(&b, []parquet.Column{{Name: "time", Kind: parquet.Instant}, {Name: value, Kind: parquet.Number}, {Name: "stamped", Kind: parquet.Truth}})
+	w := parquet.NewWriter(&b, []parquet.Column{{Name: "time", Kind: parquet.Instant}, {Name: value, Kind: parquet.Number}, {Name: "stamped", Kind: parquet.Truth}, {Name: "quality", Kind: parquet.Text}, {Name: "reason", Kind: parquet.Text}})
 	for _, r := range all {
 		w.Instant(r.At)
 		w.Number(r.Value)
 		w.Truth(r.Stamped)
+		mark := quality.Mark(r.Mark)
+		w.Text(mark.Quality().String())
+		if mark == quality.None {
+			w.Null()
+		} else {
+			w.Text(mark.String())
+		}
 		if err := w.End(); err != nil {
 			t.Fatal(err)
 		}

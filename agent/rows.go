@@ -89,6 +89,20 @@ func (r *rows) truth(b bool) {
 	r.line = strconv.AppendBool(r.line, b)
 }
 
+// word adds a text that needs no quotes, or an empty field.
+func (r *rows) word(s string) {
+	if s == "" {
+		r.none()
+		return
+	}
+	r.next()
+	if r.json {
+		r.line = strconv.AppendQuote(r.line, s)
+		return
+	}
+	r.line = append(r.line, s...)
+}
+
 // none adds an empty field, null in JSON.
 func (r *rows) none() {
 	r.next()

@@ -9,11 +9,13 @@ const (
 
 	required, optional = 0, 1
 
+	convertedUTF8 = 0
+
 	formatVersion = 1
 )
 
 // physical is the format's type of the values of a kind.
-func (k Kind) physical() int32 { return [...]int32{Instant: 2, Truth: 0, Number: 5}[k] }
+func (k Kind) physical() int32 { return [...]int32{Instant: 2, Truth: 0, Number: 5, Text: 6}[k] }
 
 // place adds the ColumnChunk of a column whose page lies from begin to end, and has a size
 // before compression.
@@ -60,13 +62,20 @@ func (f *Writer) footer() []byte {
 // schema adds the SchemaElement of a column.
 func (c *Column) schema(t *thrift) {
 	repetition := int32(required)
-	if c.Kind == Number {
+	if c.Kind.optional() {
 		repetition = optional
 	}
 	t.i32(0, 1, c.Kind.physical())
 	t.i32(1, 3, repetition)
 	t.text(3, 4, c.Name)
-	if c.Kind == Instant {
+	switch c.Kind {
+	case Text:
+		t.i32(4, 6, convertedUTF8)
+		t.field(6, 10, typeStruct) // logicalType
+		t.field(0, 1, typeStruct)  // STRING
+		t.end()
+		t.end()
+	case Instant:
 		t.field(4, 10, typeStruct) // logicalType
 		t.field(0, 8, typeStruct)  // TIMESTAMP
 		t.field(0, 1, typeTrue)    // isAdjustedToUTC

@@ -31,6 +31,7 @@ const (
 	Instant Kind = iota + 1 // Unix time in ns: int64, TIMESTAMP(NANOS, UTC)
 	Truth                   // BOOLEAN
 	Number                  // DOUBLE, or null
+	Text                    // BYTE_ARRAY, STRING, or null
 )
 
 // Column is one column of a table.
@@ -63,7 +64,7 @@ type Writer struct {
 // chunk is a column within the row group in the making.
 type chunk struct {
 	Column
-	there  []bool // of a number: whether it is not null
+	there  []bool // of a number or text: whether it is not null
 	nulls  int
 	values []byte
 }
@@ -126,9 +127,23 @@ func (f *Writer) Number(x float64) {
 	c.values = binary.LittleEndian.AppendUint64(c.values, math.Float64bits(x))
 }
 
-// Null adds an empty field of a column of numbers.
+// Text adds a text in UTF-8.
+func (f *Writer) Text(s string) {
+	c := f.field(Text)
+	c.there = append(c.there, true)
+	c.values = append(binary.LittleEndian.AppendUint32(c.values, uint32(len(s))), s...)
+}
+
+// optional reports whether fields of the kind may be null.
+func (k Kind) optional() bool { return k == Number || k == Text }
+
+// Null adds an empty field of a column of numbers or texts.
 func (f *Writer) Null() {
-	c := f.field(Number)
+	c := &f.columns[f.next]
+	if !c.Kind.optional() {
+		panic(fmt.Sprintf("parquet: an empty field in column %q of kind %d", c.Name, c.Kind))
+	}
+	f.next++
 	c.there = append(c.there, false)
 	c.nulls++
 }
@@ -204,7 +219,7 @@ func (f *Writer) page(body []byte) int64 {
 
 // body is a page before compression.
 func (c *chunk) body() []byte {
-	if c.Kind != Number {
+	if !c.Kind.optional() {
 		return c.values
 	}
 	var levels []byte

@@ -7,6 +7,7 @@ import (
 	"errors"
 	"io"
 	"math"
+	"strings"
 	"testing"
 )
 
@@ -112,7 +113,7 @@ func pages(t *testing.T, b []byte) (bodies [][][]byte, rows []int64) {
 // bits where some are, values plain.
 func TestPages(t *testing.T) {
 	var b bytes.Buffer
-	w := NewWriter(&b, []Column{{"at", Instant}, {"yes", Truth}, {"all", Number}, {"some", Number}, {"none", Number}})
+	w := NewWriter(&b, []Column{{"at", Instant}, {"yes", Truth}, {"all", Number}, {"some", Number}, {"none", Number}, {"word", Text}})
 	for i := range int64(10) {
 		w.Instant(-i)
 		w.Truth(i%3 == 0)
@@ -123,6 +124,11 @@ func TestPages(t *testing.T) {
 			w.Null()
 		}
 		w.Null()
+		if i < 9 {
+			w.Text([]string{"good", "", "bad"}[i%3])
+		} else {
+			w.Null()
+		}
 		if err := w.End(); err != nil {
 			t.Fatal(err)
 		}
@@ -142,6 +148,9 @@ func TestPages(t *testing.T) {
 	}
 	if !bytes.Equal(column[1], []byte{0b01001001, 0b10}) {
 		t.Errorf("booleans %b", column[1])
+	}
+	if want := strings.Repeat("\x04\x00\x00\x00good\x00\x00\x00\x00\x03\x00\x00\x00bad", 3); string(column[5]) != "\x03\x00\x00\x00\x05\xff\x01"+want {
+		t.Errorf("texts of which all but one are there: % x", column[5])
 	}
 	if !bytes.HasPrefix(column[2], []byte{2, 0, 0, 0, 10 << 1, 1}) || len(column[2]) != 6+80 {
 		t.Errorf("numbers that are all there: % x", column[2])

@@ -216,7 +216,7 @@ func TestExportWhileTheDemoRuns(t *testing.T) {
 			t.Errorf("%v: after the end status %d, %s; %d bytes that do not begin with the %d before", x.args, status, said, len(after), len(x.live))
 		}
 	}
-	if !strings.HasPrefix(tagLive, "time,value_K,stamped\r\n") || !strings.HasPrefix(loadLive, `{"start":"`) {
+	if !strings.HasPrefix(tagLive, "time,value_K,stamped,quality,reason\r\n") || !strings.HasPrefix(loadLive, `{"start":"`) {
 		t.Errorf("they begin with %.60q and %.60q", tagLive, loadLive)
 	}
 }
