@@ -47,6 +47,7 @@ func (s *Session) greet() {
 }
 
 func (s *Session) subscribe(ctx context.Context, c mqtt.Client) error {
+	s.unsubscribe(ctx, c, s.covered) // of the time before there were filters
 	granted, refused, lowered := 0, make(map[string]bool), 0
 	for chunk := range slices.Chunk(s.topics, filtersPerSubscribe) {
 		codes, err := s.request(ctx, c, chunk)

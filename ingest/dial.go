@@ -20,15 +20,27 @@ func (s *Session) dial(ctx context.Context) (net.Conn, error) {
 	if err != nil {
 		return nil, err
 	}
-	if !s.broker.tls {
-		return raw, nil
-	}
-	secure, err := s.handshake(ctx, raw)
+	c, err := s.wrap(ctx, raw)
 	if err != nil {
 		_ = raw.Close()
-		return nil, fmt.Errorf("tls: %w", err)
+		return nil, err
 	}
-	return secure, nil
+	return c, nil
+}
+
+// wrap puts what the address asks for around a connection.
+func (s *Session) wrap(ctx context.Context, c net.Conn) (net.Conn, error) {
+	if s.broker.tls {
+		secure, err := s.handshake(ctx, c)
+		if err != nil {
+			return nil, fmt.Errorf("tls: %w", err)
+		}
+		c = secure
+	}
+	if s.broker.socket {
+		return upgrade(ctx, c, s.broker)
+	}
+	return c, nil
 }
 
 func (s *Session) handshake(ctx context.Context, raw net.Conn) (net.Conn, error) {

@@ -5,9 +5,6 @@ import (
 	"errors"
 	"fmt"
 	"log/slog"
-	"net"
-	"net/url"
-	"strconv"
 	"time"
 )
 
@@ -23,8 +20,9 @@ const (
 
 // Options of a [Session]. URL and ClientID must be given.
 type Options struct {
-	// URL is mqtt://host:port, or mqtts://host:port for TLS. Without a port
-	// 1883 and 8883 are taken.
+	// URL is mqtt://host:port, or mqtts://host:port for TLS. In a websocket it is
+	// ws://host:port/path or wss://host:port/path. Without a port 1883, 8883, 80 and
+	// 443 are taken.
 	URL string
 	// ClientID names the session at the broker. It must stay the same from
 	// start to start, and no other client may use it.
@@ -43,6 +41,12 @@ type Options struct {
 	// ServerName is the name that the broker's certificate must carry; "": the
 	// host of the URL.
 	ServerName string
+	// MinTLS is the least version that is spoken; 0: TLS 1.2.
+	MinTLS uint16
+
+	// Subscribe are filters with wildcards, in place of the topics that they cover.
+	// They must not overlap.
+	Subscribe []string
 
 	Ahead  time.Duration // see [NewDecoder]
 	Buffer int           // readings held until taken; 0: DefaultBuffer
@@ -93,9 +97,9 @@ func (o Options) withDefaults() (Options, error) {
 	if o.KeepAlive < time.Second || o.KeepAlive > 65535*time.Second {
 		faults = append(faults, fmt.Errorf("keep-alive %v; allowed are 1 s to 65535 s", o.KeepAlive))
 	}
-	files := o.CAFile != "" || o.CertFile != "" || o.KeyFile != "" || o.ServerName != ""
+	files := o.CAFile != "" || o.CertFile != "" || o.KeyFile != "" || o.ServerName != "" || o.MinTLS != 0
 	if err == nil && files && !b.tls {
-		faults = append(faults, fmt.Errorf("certificates are given, but %s is not encrypted; use mqtts://", b))
+		faults = append(faults, fmt.Errorf("certificates are given, but %s is not encrypted; use mqtts:// or wss://", b))
 	}
 	if _, err := o.tlsConfig(b.host); err != nil {
 		faults = append(faults, err)
@@ -110,67 +114,9 @@ func orDefault[T int | time.Duration](given, normal T) T {
 	return given
 }
 
-// broker is the address of one, checked.
-type broker struct {
-	host, port string
-	tls        bool
-}
-
-func (b broker) String() string {
-	scheme := "mqtt://"
-	if b.tls {
-		scheme = "mqtts://"
-	}
-	return scheme + b.address()
-}
-
-func (b broker) address() string { return net.JoinHostPort(b.host, b.port) }
-
-// parseBroker never repeats what it could not read: it may hold a password.
-func parseBroker(raw string) (broker, error) {
-	u, err := url.Parse(raw)
-	if err != nil {
-		var inner *url.Error
-		if errors.As(err, &inner) {
-			err = inner.Err
-		}
-		return broker{}, fmt.Errorf("broker address: %w; write mqtt://host:port or mqtts://host:port", err)
-	}
-	b := broker{host: u.Hostname(), port: u.Port()}
-	switch u.Scheme {
-	case "mqtt":
-		b.port = orPort(b.port, "1883")
-	case "mqtts":
-		b.port = orPort(b.port, "8883")
-		b.tls = true
-	default:
-		return broker{}, fmt.Errorf("broker address: scheme %q; allowed are mqtt:// and, with TLS, mqtts://", u.Scheme)
-	}
-	if u.User != nil {
-		return broker{}, errors.New("broker address: user name and password do not belong in it, where logs would show them; give them apart")
-	}
-	if b.host == "" {
-		return broker{}, fmt.Errorf("broker address %q: the host is missing", raw)
-	}
-	if n, err := strconv.ParseUint(b.port, 10, 16); err != nil || n == 0 {
-		return broker{}, fmt.Errorf("broker address %q: port %q; allowed are 1 to 65535", raw, b.port)
-	}
-	if (u.Path != "" && u.Path != "/") || u.RawQuery != "" || u.Fragment != "" {
-		return broker{}, fmt.Errorf("broker address %q: nothing may follow the port", raw)
-	}
-	return b, nil
-}
-
-func orPort(given, normal string) string {
-	if given == "" {
-		return normal
-	}
-	return given
-}
-
 // tlsConfig reads the certificate files.
 func (o Options) tlsConfig(host string) (*tls.Config, error) {
-	c := &tls.Config{MinVersion: tls.VersionTLS12, ServerName: o.ServerName}
+	c := &tls.Config{MinVersion: max(tls.VersionTLS12, o.MinTLS), ServerName: o.ServerName}
 	if c.ServerName == "" {
 		c.ServerName = host
 	}

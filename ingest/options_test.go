@@ -14,13 +14,15 @@ func TestBrokerAddress(t *testing.T) {
 		"mqtt://broker.plant:1884/": "mqtt://broker.plant:1884",
 		"mqtts://broker.plant":      "mqtts://broker.plant:8883",
 		"MQTT://[::1]:1883":         "mqtt://[::1]:1883",
+		"ws://h":                    "ws://h:80/",
+		"wss://h/a%20b/mqtt":        "wss://h:443/a%20b/mqtt",
 	} {
 		if b, err := parseBroker(raw); err != nil || b.String() != want {
 			t.Errorf("%q is %v, %v; want %s", raw, b, err, want)
 		}
 	}
 	for _, raw := range []string{
-		"", "127.0.0.1:1883", "tcp://h:1883", "ws://h", "mqtt://", "mqtt://:1883", "mqtt://h:0", "mqtt://h:65536", "mqtt://h:x",
+		"", "127.0.0.1:1883", "tcp://h:1883", "ws://h?x=1", "ws://h/#f", "wss://ann:s3cret@h/mqtt", "mqtt://", "mqtt://:1883", "mqtt://h:0", "mqtt://h:65536", "mqtt://h:x",
 		"mqtt://h/topic", "mqtt://h?x=1", "mqtt://h#f", "mqtt://ann:s3cret@h:1883", "mqtt://ann:s3cret@h:x", "mqtt://ann:s3cret@h h", "mqtt://h:1\x7f",
 	} {
 		_, err := parseBroker(raw)

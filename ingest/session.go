@@ -22,7 +22,9 @@ type Session struct {
 	o       Options
 	broker  broker
 	decoder *Decoder
-	topics  []*topic // by name
+	topics  []*topic // subscribed to: by name, filters before them
+	covered []string // topics that a filter is in place of
+	strays  *strays
 	inbox   *inbox
 	outbox  *outbox
 	tally   *tally
@@ -52,17 +54,21 @@ func New(tags []Tag, o Options) (*Session, error) {
 		return nil, err
 	}
 	s := &Session{
-		tags: tags, o: o, broker: b, decoder: decoder, topics: decoder.sorted(),
+		tags: tags, o: o, broker: b, decoder: decoder, strays: newStrays(),
 		inbox: newInbox(o.Buffer, patience(o.PingTimeout)), outbox: newOutbox(o.Outbox), tally: newTally(len(tags)),
 	}
 	if o.Presence != nil {
 		s.will = slices.Clone(o.Presence.Offline(o.Now()))
 	}
-	for _, t := range s.topics {
+	for _, t := range decoder.sorted() {
 		if len(t.tags) > o.Buffer {
 			return nil, fmt.Errorf("buffer of %d readings: topic %q feeds %d tags with one message", o.Buffer, t.name, len(t.tags))
 		}
 	}
+	if err := checkFilters(o.Subscribe, decoder.sorted()); err != nil {
+		return nil, err
+	}
+	s.topics, s.covered = under(o.Subscribe, decoder.sorted())
 	return s, nil
 }
 
@@ -88,6 +94,7 @@ func (s *Session) Run(ctx context.Context) error {
 	sending, endSending := context.WithCancel(context.WithoutCancel(ctx))
 	var sender sync.WaitGroup
 	sender.Go(func() { s.send(sending, client) })
+	sender.Go(func() { s.sweep(sending, client) })
 	<-ctx.Done()
 	s.part()
 	if l := s.link.Load(); l != nil {
@@ -161,8 +168,8 @@ func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 	topic := string(d.topic)
 	out, known := s.decoder.Decode(topic, d.payload, arrival, d.retained, s.outcomes[:0])
 	s.outcomes = out
-	if !known && s.tally.unknown(arrival) {
-		s.o.Log.Warn("message on a topic that no tag reads; more of them are only counted", "topic", topic)
+	if !known {
+		s.unknown(topic, arrival)
 	}
 	var m *message
 	if d.qos > 0 {
@@ -178,6 +185,15 @@ func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 		s.o.Log.Warn("message refused; more of this kind are only counted", "reason", r.Reason.String(), "refusal", r.Error())
 	}
 	s.inbox.acknowledge()
+}
+
+func (s *Session) unknown(topic string, arrival int64) {
+	if s.tally.unknown(arrival) {
+		s.o.Log.Warn("message on a topic that no tag reads; more of them are only counted", "topic", topic)
+	}
+	if !slices.ContainsFunc(s.o.Subscribe, func(f string) bool { return covers(f, topic) }) {
+		s.strays.note(topic)
+	}
 }
 
 // overflow turns what found no room into refusals.

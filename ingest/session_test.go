@@ -259,13 +259,14 @@ func TestRetainedWithoutStamp(t *testing.T) {
 
 func TestUnknownTopic(t *testing.T) {
 	server, url := inProcess(t)
-	first, _, stop := start(t, []Tag{number("old")}, Options{URL: url})
+	old := []Tag{number("old1"), number("old2"), number("old3")}
+	first, _, stop := start(t, old, Options{URL: url})
 	ready(t, first)
 	stop()
-	s, log, _ := start(t, []Tag{number("new")}, Options{URL: url}) // the session still has the old topic
+	s, log, _ := start(t, []Tag{number("new")}, Options{URL: url}) // the session still has the old topics
 	ready(t, s)
-	for range 3 {
-		if err := server.Publish("plant/old", []byte("1"), false, 1); err != nil {
+	for _, tag := range old {
+		if err := server.Publish(tag.Topic, []byte("1"), false, 1); err != nil {
 			t.Fatal(err)
 		}
 	}

@@ -136,6 +136,24 @@ func TestTLS(t *testing.T) {
 	checkTLS(t, a, "mqtts://"+address)
 }
 
+// A broker that speaks TLS 1.2 at most is refused where 1.3 is the least.
+func TestLeastTLS(t *testing.T) {
+	a := plantAuthority(t)
+	pair, err := tls.LoadX509KeyPair(a.path("broker.pem"), a.path("broker.key"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	for most, want := range map[uint16]bool{tls.VersionTLS12: false, tls.VersionTLS13: true} {
+		_, address := serve(t, &tls.Config{Certificates: []tls.Certificate{pair}, MaxVersion: most})
+		s, _, stop := start(t, []Tag{number("a")}, Options{URL: "mqtts://" + address, CAFile: a.path("ca.pem"), ServerName: "broker.plant", MinTLS: tls.VersionTLS13})
+		eventually(t, "an outcome", func() bool { st := s.Stats(); return st.Failures > 0 || st.Connected })
+		if st := s.Stats(); st.Connected != want || !want && !strings.Contains(st.LastError, "protocol version") {
+			t.Errorf("broker with %s: %+v; want connected %t", tls.VersionName(most), st, want)
+		}
+		stop()
+	}
+}
+
 func TestOldTLSIsRefused(t *testing.T) {
 	a := plantAuthority(t)
 	pair, err := tls.LoadX509KeyPair(a.path("broker.pem"), a.path("broker.key"))
@@ -168,6 +186,40 @@ func TestCertificatesAreReadAtEachAttempt(t *testing.T) {
 	eventually(t, "a failure", func() bool { return s.Stats().Failures > 0 })
 	if err := os.WriteFile(other.path("ca.pem"), right, 0o600); err != nil {
 		t.Fatal(err)
+	}
+	ready(t, s)
+}
+
+// A client certificate that the broker no longer takes is replaced without a restart:
+// first its file, for a moment without the key that goes with it, then the key.
+func TestClientCertificateIsReplaced(t *testing.T) {
+	a := plantAuthority(t)
+	pair, err := tls.LoadX509KeyPair(a.path("broker.pem"), a.path("broker.key"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	pool, err := readPool(a.path("ca.pem"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, address := serve(t, &tls.Config{Certificates: []tls.Certificate{pair}, ClientCAs: pool, ClientAuth: tls.RequireAndVerifyClientCert})
+	old := newAuthority(t)
+	old.issue(t, "client", x509.ExtKeyUsageClientAuth)
+	s, _, _ := start(t, []Tag{number("a")}, Options{
+		URL: "mqtts://" + address, CAFile: a.path("ca.pem"), ServerName: "broker.plant", CertFile: old.path("client.pem"), KeyFile: old.path("client.key"),
+	})
+	eventually(t, "a failure", func() bool { return s.Stats().Failures > 0 })
+	for _, file := range []string{"client.pem", "client.key"} {
+		text, err := os.ReadFile(a.path(file))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := os.WriteFile(old.path(file), text, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		if file == "client.pem" {
+			eventually(t, "a mismatch", func() bool { return strings.Contains(s.Stats().LastError, "private key does not match") })
+		}
 	}
 	ready(t, s)
 }
