@@ -2,14 +2,18 @@ package ingest
 
 import (
 	"bytes"
+	"cmp"
 	"errors"
 	"fmt"
 	"io"
 	"maps"
+	"math"
 	"slices"
 	"time"
 
 	"github.com/go-json-experiment/json/jsontext"
+
+	"heatreeve/ingest/quality"
 )
 
 // DefaultAhead is how far a stamp may lie in the future unless told otherwise;
@@ -32,29 +36,46 @@ type Decoder struct {
 	topics map[string]*topic
 	ahead  time.Duration
 
-	source bytes.Buffer
-	json   jsontext.Decoder
-	found  []found
+	source   bytes.Buffer
+	json     jsontext.Decoder
+	found    []found
+	elements []found // of all lists of samples, a stretch each
 }
 
 // topic is what the messages of one topic are searched for.
 type topic struct {
 	name  string
 	qos   byte
-	tags  []wanted
+	tags  []*wanted
 	root  *node
-	slots int  // in the tree below root
+	slots int // in the tree below root
+	lists []*list
 	json  bool // a tag has a pointer
 }
 
-// wanted is where one tag's value and time stand; -1: not asked for.
-type wanted struct{ tag, value, time int }
+// wanted is where what a tag wants stands, by slots; -1: not asked for. Of a tag with
+// samples, value, time and quality are slots of an element; unit and start are of the
+// message, as all are of other tags.
+type wanted struct {
+	tag                               int
+	value, time, quality, unit, start int
+	list                              *list
+	numbers                           map[float64]quality.Mark // of the quality's words
+	spelled                           []byte                   // the unit as last accepted, as it stands in the message
+}
 
 // found is what a pointer led to; the zero kind: nothing. raw is set for
 // scalars and points into the payload.
 type found struct {
 	kind jsontext.Kind
 	raw  []byte
+}
+
+// arrived is a message as it came.
+type arrived struct {
+	payload  []byte
+	arrival  int64
+	retained bool
 }
 
 // NewDecoder prepares for the tags. Stamps more than ahead beyond the arrival
@@ -73,12 +94,15 @@ func NewDecoder(tags []Tag, ahead time.Duration) (*Decoder, error) {
 		}
 		d.add(i, tag)
 	}
+	slots := 0
+	for _, t := range d.sorted() {
+		slots = max(slots, t.slots)
+		if err := t.root.check(""); err != nil {
+			faults = append(faults, fmt.Errorf("topic %q: %w", t.name, err))
+		}
+	}
 	if err := errors.Join(faults...); err != nil {
 		return nil, err
-	}
-	slots := 0
-	for _, t := range d.topics {
-		slots = max(slots, t.slots)
 	}
 	d.found = make([]found, slots)
 	return d, nil
@@ -91,7 +115,16 @@ func (d *Decoder) add(i int, tag Tag) {
 		d.topics[tag.Topic] = t
 	}
 	t.qos = max(t.qos, tag.QoS)
-	t.tags = append(t.tags, wanted{tag: i, value: t.slot(tag.Value), time: t.slot(tag.Time)})
+	w := &wanted{tag: i, quality: -1, start: -1, unit: t.slot(tag.UnitAt), numbers: tag.Quality.numbers()}
+	if tag.Samples != nil {
+		t.want(w, tag)
+	} else {
+		w.value, w.time = t.slot(tag.Value), t.slot(tag.Time)
+		if tag.Quality != nil {
+			w.quality = t.slot(tag.Quality.At)
+		}
+	}
+	t.tags = append(t.tags, w)
 }
 
 // sorted returns the topics by name.
@@ -111,37 +144,45 @@ func (t *topic) slot(pointer string) int {
 		return -1
 	}
 	t.json = true
-	n := t.root.at(path)
-	if n.slot < 0 {
-		n.slot = t.slots
-		t.slots++
-	}
-	return n.slot
+	return t.root.at(path).number(&t.slots)
 }
 
-// Decode appends to out one outcome for each tag that reads from the topic and
-// reports whether there is any. arrival is in Unix nanoseconds; retained says
-// that the broker had kept the message for newcomers. The payload is not
-// changed, and not kept beyond the call.
+// Decode appends to out one outcome for each tag that reads from the topic, and of a tag
+// with samples one for each sample, and reports whether there is any tag. arrival is in
+// Unix nanoseconds; retained says that the broker had kept the message for newcomers. The
+// payload is not changed, and not kept beyond the call.
 func (d *Decoder) Decode(topic string, payload []byte, arrival int64, retained bool, out []Outcome) ([]Outcome, bool) {
 	t := d.topics[topic]
 	if t == nil {
 		return out, false
 	}
+	m := arrived{payload, arrival, retained}
 	whole := d.open(t, payload)
 	for _, w := range t.tags {
-		o := Outcome{Reading: Reading{Tag: w.tag}}
-		f := whole
-		if !d.tags[w.tag].concerns(w, f) {
-			f = d.read(&o.Reading, w, payload, arrival, retained)
+		switch tag := &d.tags[w.tag]; {
+		case tag.concerns(w, whole):
+			out = append(out, tag.refused(Reading{Tag: w.tag}, whole, &m))
+		case w.list != nil:
+			out = d.samples(out, w, &m)
+		default:
+			out = append(out, d.outcome(w, d.found, &m))
 		}
-		if f != nil {
-			text, cut := excerpt(payload)
-			o.Refusal = &Refusal{Tag: d.tags[w.tag].Name, Reason: f.reason, Payload: text, Cut: cut, At: arrival, Detail: f.detail}
-		}
-		out = append(out, o)
 	}
 	return out, true
+}
+
+// outcome is what one tag has from the message, or from the sample whose slots are at.
+func (d *Decoder) outcome(w *wanted, at []found, m *arrived) Outcome {
+	r := Reading{Tag: w.tag}
+	if f := d.read(&r, w, at, m); f != nil {
+		return d.tags[w.tag].refused(r, f, m)
+	}
+	return Outcome{Reading: r}
+}
+
+func (t *Tag) refused(r Reading, f *fault, m *arrived) Outcome {
+	text, cut := excerpt(m.payload)
+	return Outcome{Reading: r, Refusal: &Refusal{Tag: t.Name, Reason: f.reason, Payload: text, Cut: cut, At: m.arrival, Detail: f.detail}}
 }
 
 // open checks the message as a whole and notes what the pointers find.
@@ -156,9 +197,13 @@ func (d *Decoder) open(t *topic, payload []byte) *fault {
 		return nil
 	}
 	clear(d.found)
+	d.elements = d.elements[:0]
+	for _, l := range t.lists {
+		l.stretch = stretch{}
+	}
 	d.source = *bytes.NewBuffer(payload)
 	d.json.Reset(&d.source)
-	if err := d.walk(t.root, payload); err != nil {
+	if err := d.walk(t.root, payload, d.found); err != nil {
 		return d.syntax(err, payload)
 	}
 	end := d.json.InputOffset()
@@ -168,67 +213,116 @@ func (d *Decoder) open(t *topic, payload []byte) *fault {
 	return nil
 }
 
-// read fills in value and time of one tag.
-func (d *Decoder) read(r *Reading, w wanted, payload []byte, arrival int64, retained bool) *fault {
+// read fills in value, mark and time of one tag. A source that calls its value bad may
+// put anything in its place; so much is believed.
+func (d *Decoder) read(r *Reading, w *wanted, at []found, m *arrived) *fault {
 	tag := &d.tags[w.tag]
-	x, f := d.value(tag, w, payload)
-	if f != nil {
+	said, unknown := tag.quality(w, at)
+	x, own, f := d.value(tag, w, at, m.payload)
+	if f != nil && said.Quality() == quality.Bad {
+		x, f = math.NaN(), nil
+	}
+	if f = cmp.Or(f, unknown); f != nil {
 		return f
 	}
-	r.Value = tag.Scale*x + tag.Offset
-	if !finite(r.Value) {
-		return faultf(NotFinite, "holds %v, which is not finite in SI units", x)
-	}
-	if r.At, f = d.instant(tag, w, arrival, retained); f != nil {
+	r.Mark = quality.Worse(said, own)
+	if f := d.convert(r, tag, w, x); f != nil {
 		return f
 	}
-	r.Stamped = w.time >= 0
-	if r.Value < tag.Min || r.Value > tag.Max {
+	if f := d.stamp(r, tag, w, at, m); f != nil {
+		return f
+	}
+	if r.Mark.Quality() != quality.Bad && !(r.Value >= tag.Min && r.Value <= tag.Max) {
 		return faultf(OutOfRange, "holds %v, in SI units %.6g, outside the instrument's range %.6g to %.6g; check the instrument, its unit and its range", x, r.Value, tag.Min, tag.Max)
 	}
 	return nil
 }
 
-func (d *Decoder) value(tag *Tag, w wanted, payload []byte) (float64, *fault) {
+// convert puts x into SI. What is bad needs no unit, and no value.
+func (d *Decoder) convert(r *Reading, tag *Tag, w *wanted, x float64) *fault {
+	bad := r.Mark.Quality() == quality.Bad
+	if w.unit >= 0 && !bad {
+		if f := tag.unit(w, &d.found[w.unit]); f != nil {
+			return f
+		}
+	}
+	if tag.Signal == nil {
+		r.Value = tag.Scale*x + tag.Offset
+	} else {
+		var m quality.Mark
+		r.Value, m = tag.Signal.Convert(x)
+		r.Mark = quality.Worse(r.Mark, m)
+		bad = bad || m.Quality() == quality.Bad
+	}
+	switch {
+	case finite(r.Value):
+	case bad:
+		r.Value = math.NaN()
+	default:
+		return faultf(NotFinite, "holds %v, which is not finite in SI units", x)
+	}
+	return nil
+}
+
+// value is the number of a tag, or with its mark the lack of one.
+func (d *Decoder) value(tag *Tag, w *wanted, at []found, payload []byte) (float64, quality.Mark, *fault) {
 	if tag.Liveness != nil {
-		return d.liveness(tag, w, payload)
+		x, f := d.liveness(tag, w, payload)
+		return x, quality.None, f
 	}
 	if w.value < 0 {
 		return bareNumber(payload)
 	}
-	switch v := d.found[w.value]; v.kind {
+	switch v := at[w.value]; v.kind {
 	case '0':
-		return parse(v.raw)
+		x, f := parse(v.raw)
+		return x, quality.None, f
 	case 0:
-		return 0, faultf(ValueMissing, "has nothing at %q; check the tag's value pointer", tag.Value)
+		return 0, quality.None, faultf(ValueMissing, "has nothing at %q%s; check the tag's value pointer", tag.Value, tag.ofSample())
 	case 'n':
-		return 0, faultf(NullValue, "has null at %q: the publisher has no value", tag.Value)
+		return math.NaN(), quality.NoValue, nil
 	default:
-		return 0, faultf(WrongType, "has %s at %q where a number should be; publish a number without quotes", kindName(v.kind), tag.Value)
+		return 0, quality.None, faultf(WrongType, "has %s at %q%s where a number should be; publish a number without quotes", kindName(v.kind), tag.Value, tag.ofSample())
 	}
 }
 
-func (d *Decoder) instant(tag *Tag, w wanted, arrival int64, retained bool) (int64, *fault) {
+// stamp fills in the instant of a reading: that of its source, or of its arrival.
+func (d *Decoder) stamp(r *Reading, tag *Tag, w *wanted, at []found, m *arrived) *fault {
+	if w.start >= 0 {
+		return nil // counted from the first sample
+	}
 	if w.time < 0 {
-		if retained && (tag.Liveness == nil || !tag.Liveness.Kept) {
-			return 0, faultf(Retained, "was kept by the broker and carries no time, so its age is unknown; publish with a time stamp, or without retain")
+		if m.retained && (tag.Liveness == nil || !tag.Liveness.Kept) {
+			return faultf(Retained, "was kept by the broker and carries no time, so its age is unknown; publish with a time stamp, or without retain")
 		}
-		return arrival, nil
+		r.At = m.arrival
+		return nil
 	}
-	s := d.found[w.time]
+	instant, f := tag.instant(&at[w.time])
+	if f == nil {
+		f = d.timely(instant, m.arrival)
+	}
+	r.At, r.Stamped = instant, true
+	return f
+}
+
+// instant reads a stamp.
+func (t *Tag) instant(s *found) (int64, *fault) {
 	if s.kind == 0 {
-		return 0, faultf(TimeMissing, "has no time stamp at %q; check the tag's time pointer", tag.Time)
+		return 0, faultf(TimeMissing, "has no time stamp at %q%s; check the tag's time pointer", t.Time, t.ofSample())
 	}
-	at, f := stamp(tag.TimeFormat, s.kind, s.raw)
+	return stamp(t.TimeFormat, s.kind, s.raw)
+}
+
+// timely refuses a stamp of no set clock, or of one that is fast.
+func (d *Decoder) timely(at, arrival int64) *fault {
 	switch {
-	case f != nil:
-		return 0, f
 	case at < clockSet:
-		return 0, faultf(UnsetClock, "is stamped %s: set the publisher's clock", inWords(at))
+		return faultf(UnsetClock, "is stamped %s: set the publisher's clock", inWords(at))
 	case at > arrival && at-arrival > int64(d.ahead):
-		return 0, faultf(Ahead, "is stamped %s, %v after its arrival (allowed %v); set the clocks by network time", inWords(at), time.Duration(at-arrival), d.ahead)
+		return faultf(Ahead, "is stamped %s, %v after its arrival (allowed %v); set the clocks by network time", inWords(at), time.Duration(at-arrival), d.ahead)
 	}
-	return at, nil
+	return nil
 }
 
 func inWords(at int64) string { return time.Unix(0, at).UTC().Format(time.RFC3339Nano) }
@@ -247,24 +341,30 @@ func kindName(k jsontext.Kind) string {
 
 // walk reads one JSON value and notes what is wanted of it. It checks all of
 // it: syntax, UTF-8, and that no object has a name twice.
-func (d *Decoder) walk(n *node, payload []byte) error {
+func (d *Decoder) walk(n *node, payload []byte, into []found) error {
 	kind := d.json.PeekKind()
 	if n.slot >= 0 {
-		d.found[n.slot] = found{kind: kind}
+		into[n.slot] = found{kind: kind}
+	}
+	if n.list != nil {
+		n.list.kind = kind
+		if kind == '[' {
+			return d.gather(n.list, payload)
+		}
 	}
 	if len(n.under) > 0 && (kind == '{' || kind == '[') {
-		return d.enter(n, kind, payload)
+		return d.enter(n, kind, payload, into)
 	}
 	value, err := d.json.ReadValue()
 	if err == nil && n.slot >= 0 {
 		end := d.json.InputOffset()
-		d.found[n.slot].raw = payload[end-int64(len(value)) : end]
+		into[n.slot].raw = payload[end-int64(len(value)) : end]
 	}
 	return err
 }
 
 // enter reads an object or list, member by member.
-func (d *Decoder) enter(n *node, kind jsontext.Kind, payload []byte) error {
+func (d *Decoder) enter(n *node, kind jsontext.Kind, payload []byte, into []found) error {
 	if _, err := d.json.ReadToken(); err != nil {
 		return err
 	}
@@ -280,7 +380,7 @@ func (d *Decoder) enter(n *node, kind jsontext.Kind, payload []byte) error {
 		if next == nil {
 			err = d.json.SkipValue()
 		} else {
-			err = d.walk(next, payload)
+			err = d.walk(next, payload, into)
 		}
 		if err != nil {
 			return err

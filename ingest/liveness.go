@@ -20,7 +20,7 @@ type Liveness struct {
 func (t *Tag) heartbeat() bool { return t.Liveness != nil && t.Liveness.Online == "" }
 
 // concerns tells whether a fault of a message as a whole is one for the tag.
-func (t *Tag) concerns(w wanted, f *fault) bool {
+func (t *Tag) concerns(w *wanted, f *fault) bool {
 	switch {
 	case f == nil:
 		return false
@@ -32,7 +32,7 @@ func (t *Tag) concerns(w wanted, f *fault) bool {
 
 // liveness is 1 where the source says that it is alive, and 0 where it says that it
 // goes.
-func (d *Decoder) liveness(tag *Tag, w wanted, payload []byte) (float64, *fault) {
+func (d *Decoder) liveness(tag *Tag, w *wanted, payload []byte) (float64, *fault) {
 	if tag.heartbeat() {
 		return 1, nil
 	}
@@ -51,16 +51,14 @@ func (d *Decoder) liveness(tag *Tag, w wanted, payload []byte) (float64, *fault)
 
 // word is the text of a message, or what its pointer leads to: text without its
 // quotes, or a number, true or false as it stands.
-func (d *Decoder) word(tag *Tag, w wanted, payload []byte) ([]byte, *fault) {
+func (d *Decoder) word(tag *Tag, w *wanted, payload []byte) ([]byte, *fault) {
 	if w.value < 0 {
 		return bytes.Trim(payload, blanks), nil
 	}
 	switch v := d.found[w.value]; v.kind {
 	case 0:
 		return nil, faultf(ValueMissing, "has nothing at %q; check the value pointer", tag.Value)
-	case 'n':
-		return nil, faultf(NullValue, "has null at %q: the publisher has no value", tag.Value)
-	case '{', '[':
+	case 'n', '{', '[':
 		return nil, faultf(WrongType, "has %s at %q where a word should be", kindName(v.kind), tag.Value)
 	case '"':
 		text, err := jsontext.AppendUnquote(nil, v.raw)

@@ -61,7 +61,7 @@ func TestAvailability(t *testing.T) {
 		{alive(words), "Up", 0, WrongWord}, {alive(words), "up and away", 0, WrongWord}, {alive(words), "1", 0, WrongWord}, {alive(words), `"up"`, 0, WrongWord},
 		{alive(words), " ", 0, Empty}, {alive(words), strings.Repeat("x", MaxPayload+1), 0, TooLarge},
 		{inJSON, `{"state":"up"}`, 1, reasons}, {inJSON, `{"state":"\u0064own"}`, 0, reasons}, {inJSON, `{"state":"?"}`, 0, WrongWord},
-		{inJSON, `{"state":null}`, 0, NullValue}, {inJSON, `{"state":{}}`, 0, WrongType}, {inJSON, `{}`, 0, ValueMissing}, {inJSON, "up", 0, NotJSON},
+		{inJSON, `{"state":null}`, 0, WrongType}, {inJSON, `{"state":{}}`, 0, WrongType}, {inJSON, `{}`, 0, ValueMissing}, {inJSON, "up", 0, NotJSON},
 		{flag, `{"on":true}`, 1, reasons}, {flag, `{"on":false}`, 0, reasons}, {flag, `{"on":1}`, 0, WrongWord},
 	} {
 		o := decodeOne(t, tt.tag, tt.payload, false)

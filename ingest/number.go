@@ -2,7 +2,10 @@ package ingest
 
 import (
 	"bytes"
+	"math"
 	"strconv"
+
+	"heatreeve/ingest/quality"
 )
 
 const blanks = " \t\r\n"
@@ -10,25 +13,32 @@ const blanks = " \t\r\n"
 // bareNumber reads a payload that is nothing but a decimal number, blanks
 // around it allowed. A leading plus or zero and a missing digit before or after
 // the point are understood, for controllers print them; hexadecimal and digit
-// groups are not.
-func bareNumber(payload []byte) (float64, *fault) {
+// groups are not. A null says that the publisher has no value.
+func bareNumber(payload []byte) (float64, quality.Mark, *fault) {
 	text := bytes.Trim(payload, blanks)
 	if decimal(text) {
-		return parse(text)
+		x, f := parse(text)
+		return x, quality.None, f
 	}
+	if string(text) == "null" {
+		return math.NaN(), quality.NoValue, nil
+	}
+	return 0, quality.None, notBare(text)
+}
+
+// notBare says why a text is no bare number.
+func notBare(text []byte) *fault {
 	switch {
 	case spellsNotFinite(text):
-		return 0, faultf(NotFinite, "is not a finite number; publish nothing while there is no value")
-	case string(text) == "null":
-		return 0, faultf(NullValue, "is null: the publisher has no value")
+		return faultf(NotFinite, "is not a finite number; publish null while there is no value")
 	case text[0] == '"' || string(text) == "true" || string(text) == "false":
-		return 0, faultf(WrongType, "is text or true/false; publish a number without quotes")
+		return faultf(WrongType, "is text or true/false; publish a number without quotes")
 	case text[0] == '{' || text[0] == '[':
-		return 0, faultf(WrongType, "looks like JSON; give the tag a value pointer, such as \"/value\"")
+		return faultf(WrongType, "looks like JSON; give the tag a value pointer, such as \"/value\"")
 	case decimal(bytes.Replace(text, []byte(","), []byte("."), 1)):
-		return 0, faultf(NotANumber, "is not a number; the decimal separator must be a point")
+		return faultf(NotANumber, "is not a number; the decimal separator must be a point")
 	}
-	return 0, faultf(NotANumber, "is not a number; publish decimal digits only, without unit or grouping")
+	return faultf(NotANumber, "is not a number; publish decimal digits only, without unit or grouping")
 }
 
 // parse reads text that is known to be a decimal number.

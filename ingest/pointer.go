@@ -32,6 +32,7 @@ func splitPointer(pointer string) ([]string, error) {
 type node struct {
 	slot  int // where the value found here is noted; -1: nowhere
 	under map[string]*node
+	list  *list // of samples that stands here
 }
 
 func newNode() *node { return &node{slot: -1} }
@@ -50,6 +51,28 @@ func (n *node) at(path []string) *node {
 		n = next
 	}
 	return n
+}
+
+// number returns the slot of n, the next of slots where it has none yet.
+func (n *node) number(slots *int) int {
+	if n.slot < 0 {
+		n.slot = *slots
+		*slots++
+	}
+	return n.slot
+}
+
+// check refuses pointers into a list of samples, whose elements are read for themselves.
+func (n *node) check(path string) error {
+	if n.list != nil && len(n.under) > 0 {
+		return fmt.Errorf("a pointer leads into the list of samples at %q; all of a tag with samples is read from there", path)
+	}
+	for name, below := range n.under {
+		if err := below.check(path + "/" + name); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // member returns the node of an object member; name is as it stands in the

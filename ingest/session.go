@@ -61,8 +61,8 @@ func New(tags []Tag, o Options) (*Session, error) {
 		s.will = slices.Clone(o.Presence.Offline(o.Now()))
 	}
 	for _, t := range decoder.sorted() {
-		if len(t.tags) > o.Buffer {
-			return nil, fmt.Errorf("buffer of %d readings: topic %q feeds %d tags with one message", o.Buffer, t.name, len(t.tags))
+		if n := t.most(); n > o.Buffer {
+			return nil, fmt.Errorf("buffer of %d readings: topic %q feeds %d tags with up to %d in one message", o.Buffer, t.name, len(t.tags), n)
 		}
 	}
 	if err := checkFilters(o.Subscribe, decoder.sorted()); err != nil {

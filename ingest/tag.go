@@ -6,6 +6,9 @@ import (
 	"math"
 	"strings"
 	"unicode/utf8"
+
+	"heatreeve/ingest/quality"
+	"heatreeve/thermo/unit"
 )
 
 // MaxPayload is the longest payload that is read, in bytes; a longer one is
@@ -32,13 +35,31 @@ type Tag struct {
 	Value      string // JSON Pointer of the value; "": the payload is a bare number
 	Time       string // JSON Pointer of the time stamp; "": the arrival counts
 	TimeFormat string // one of the Time constants
-	Scale      float64
-	Offset     float64 // SI = Scale·x + Offset
-	Min, Max   float64 // SI, instrument range, both ends allowed; ±Inf: no limit
-	QoS        byte    // 0 or 1; 1 is needed for delivery after a crash
+	// Samples is set where a message carries a list of readings of the tag; Value, Time and
+	// the place of Quality are then pointers into each of its elements.
+	Samples *Samples
+	Quality *Quality // nil: the messages tell none
+	// UnitAt is the JSON Pointer of the unit that the message names, into the message as a
+	// whole; "": it names none. Any spelling of Unit, that of its numbers, is accepted.
+	UnitAt string
+	Unit   unit.Unit
+
+	Scale  float64
+	Offset float64 // SI = Scale·x + Offset
+	Signal Signal  // in place of Scale and Offset; nil: they hold
+
+	Min, Max float64 // SI, instrument range, both ends allowed; ±Inf: no limit
+	QoS      byte    // 0 or 1; 1 is needed for delivery after a crash
 	// Liveness is set where the messages tell not a value but whether their source is
 	// alive.
 	Liveness *Liveness
+}
+
+// Signal is a raw signal, of which more than a factor and an offset makes the quantity.
+type Signal interface {
+	// Convert returns what the number x of the payload means, in SI, and what the signal
+	// itself tells of it. Where the mark is bad there is no value.
+	Convert(x float64) (si float64, m quality.Mark)
 }
 
 // check returns every fault of the tag, joined.
@@ -53,12 +74,24 @@ func (t Tag) check() error {
 	if err := checkTopic(t.Topic); err != nil {
 		fault("%w", err)
 	}
-	for _, p := range []string{t.Value, t.Time} {
+	for _, p := range t.pointers() {
 		if _, err := splitPointer(p); err != nil {
 			fault("%w", err)
 		}
 	}
-	if t.Value == "" && t.Time != "" && !t.heartbeat() {
+	if err := t.Quality.check(); err != nil {
+		fault("%w", err)
+	}
+	if err := t.checkSamples(); err != nil {
+		fault("%w", err)
+	}
+	if t.Value == "" && t.Samples == nil && (t.Quality != nil || t.UnitAt != "") {
+		fault("quality or unit without a value pointer: a bare number carries none")
+	}
+	if t.UnitAt != "" && t.Unit.Symbol == "" {
+		fault("unit pointer %q, but the tag has no unit to compare with", t.UnitAt)
+	}
+	if t.Value == "" && t.Samples == nil && t.Time != "" && !t.heartbeat() {
 		fault("time pointer %q without a value pointer: a bare number carries no stamp", t.Time)
 	}
 	switch t.TimeFormat {
@@ -66,7 +99,7 @@ func (t Tag) check() error {
 	default:
 		fault("time format %q is unknown; known: %q, %q, %q, %q, or none", t.TimeFormat, TimeSeconds, TimeMillis, TimeMicros, TimeRFC3339)
 	}
-	if !finite(t.Scale) || t.Scale == 0 || !finite(t.Offset) {
+	if t.Signal == nil && (!finite(t.Scale) || t.Scale == 0 || !finite(t.Offset)) {
 		fault("scale %v and offset %v must be finite and the scale not 0", t.Scale, t.Offset)
 	}
 	if l := t.Liveness; l != nil && l.Online == l.Offline && l.Online != "" {
@@ -79,6 +112,18 @@ func (t Tag) check() error {
 		fault("quality of service %d; use 1 (or 0, which may lose messages)", t.QoS)
 	}
 	return errors.Join(faults...)
+}
+
+// pointers are all that the tag has.
+func (t *Tag) pointers() []string {
+	all := []string{t.Value, t.Time, t.UnitAt}
+	if t.Samples != nil {
+		all = append(all, t.Samples.At)
+	}
+	if t.Quality != nil {
+		all = append(all, t.Quality.At)
+	}
+	return all
 }
 
 func checkTopic(topic string) error {

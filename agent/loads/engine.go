@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"heatreeve/ingest/quality"
 )
 
 // Windows are the lengths of the rolling means, ns, in the order of
@@ -86,9 +88,7 @@ func (e *Engine) enlist(load int) {
 // b.Through. It appends the minutes that closed to closed and returns it.
 // Event time never runs back: an earlier Through than the last is ignored.
 func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
-	for _, r := range b.Readings {
-		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
-	}
+	e.file(b.Readings)
 	e.through = max(e.through, b.Through)
 	if e.next == 0 && !e.begin() {
 		return closed
@@ -107,6 +107,15 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 		e.next = g + span
 	}
 	return closed
+}
+
+// file takes in readings. One that its source calls bad has no value to hold.
+func (e *Engine) file(readings []Reading) {
+	for _, r := range readings {
+		if r.Mark.Quality() != quality.Bad {
+			e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
+		}
+	}
 }
 
 // Relief returns the instant up to which event time has to come so that each tag has
@@ -134,9 +143,7 @@ func (e *Engine) Recall(readings []Reading) {
 // Adopt takes in a beat whose intervals have been booked elsewhere: its readings are
 // held, event time moves on, and nothing is booked.
 func (e *Engine) Adopt(b Beat) {
-	for _, r := range b.Readings {
-		e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
-	}
+	e.file(b.Readings)
 	e.through = max(e.through, b.Through)
 	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin()) && next > e.next {
 		for e.next < next {

@@ -1,0 +1,98 @@
+package quality
+
+import "testing"
+
+// The codes are those of IEC 62541-4 and -8 (OPC 10000-4, 7.39, and OPC 10000-8, 6.3) and of
+// a companion specification's table; those marked (memory) were not looked up.
+func TestOPCUA(t *testing.T) {
+	for _, tt := range []struct {
+		code uint32
+		name string
+		want Mark
+	}{
+		{0x00000000, "Good", None}, {0x40000000, "Uncertain", Doubted}, {0x80000000, "Bad", Rejected},
+		{0x40900000, "UncertainLastUsableValue", LastUsable}, {0x40910000, "UncertainSubstituteValue", Substitute},
+		{0x80050000, "BadCommunicationError", Offline}, {0x80310000, "BadNoCommunication", Offline},
+		{0x80890000, "BadConfigurationError", Rejected}, {0x808A0000, "BadNotConnected", Offline},
+		{0x808B0000, "BadDeviceFailure", Failed}, {0x808C0000, "BadSensorFailure", Failed}, {0x808D0000, "BadOutOfService", OutOfService},
+		{0x40920000, "UncertainInitialValue", Substitute}, {0x40930000, "UncertainSensorNotAccurate", Inaccurate}, // (memory)
+		{0x40940000, "UncertainEngineeringUnitsExceeded", OffSpec}, {0x40950000, "UncertainSubNormal", Doubted}, // (memory)
+		{0x00960000, "GoodLocalOverride", None},                        // (memory)
+		{0x408F0000, "UncertainNoCommunicationLastUsable", LastUsable}, // (memory)
+	} {
+		for _, flags := range []uint32{0, 0x0400, 0x0480, 0x0700, 0xFFFF} { // limits, overflow, anything
+			if got, ok := OPCUA(tt.code | flags); !ok || got != tt.want {
+				t.Errorf("%#08x: %v, %v; want %v", tt.code|flags, got, ok, tt.want)
+			}
+		}
+		if got, ok := OPCUAName([]byte(tt.name)); !ok || got != tt.want {
+			t.Errorf("%s: %v, %v; want %v", tt.name, got, ok, tt.want)
+		}
+		if want := Quality(tt.code >> 30); tt.want.Quality() != want {
+			t.Errorf("%s has the mark %v, of another severity than %v", tt.name, tt.want, want)
+		}
+	}
+	for _, code := range []uint32{0xC0000000, 0xFFFFFFFF} {
+		if m, ok := OPCUA(code); ok {
+			t.Errorf("%#x is %v; want no status", code, m)
+		}
+	}
+	for _, name := range []string{"", "good", "BAD", "Goodness", "Bad!", "BadSensor Failure", "Not", "Badß", "Bad-X"} {
+		if m, ok := OPCUAName([]byte(name)); ok {
+			t.Errorf("%q is %v; want no status", name, m)
+		}
+	}
+}
+
+// NAMUR NE 107 (2017): failure and function check leave no valid signal, out of
+// specification an uncertain one, and a need for maintenance a valid one.
+func TestNE107(t *testing.T) {
+	for word, want := range map[string]Mark{
+		"": None, "NORMAL": None, "F": Failed, "f": Failed, "FAILURE": Failed, "C": FunctionCheck, "CHECK_FUNCTION": FunctionCheck,
+		"S": OffSpec, "OFF_SPEC": OffSpec, "M": Maintenance, "m": Maintenance, "MAINTENANCE_REQUIRED": Maintenance,
+	} {
+		if got, ok := NE107([]byte(word)); !ok || got != want {
+			t.Errorf("%q: %v, %v; want %v", word, got, ok, want)
+		}
+	}
+	for _, word := range []string{"G", "&", "FF", "failure", " F", "\xff", "\x06"} {
+		if m, ok := NE107([]byte(word)); ok {
+			t.Errorf("%q is %v; want no signal", word, m)
+		}
+	}
+}
+
+func TestSparkplug(t *testing.T) {
+	for code, want := range map[int64]Mark{0: Rejected, 192: None, 500: StaleAtSource} {
+		if got, ok := Sparkplug(code); !ok || got != want {
+			t.Errorf("%d: %v, %v; want %v", code, got, ok, want)
+		}
+	}
+	for _, code := range []int64{-1, 1, 64, 191, 499, 1 << 40} {
+		if m, ok := Sparkplug(code); ok {
+			t.Errorf("%d is %v; want no quality", code, m)
+		}
+	}
+}
+
+// Whatever the word, it is no code, or has a mark that is known.
+func FuzzNames(f *testing.F) {
+	for name := range statusNames {
+		f.Add([]byte(name))
+	}
+	for name := range namedSignals {
+		f.Add([]byte(name))
+	}
+	f.Fuzz(func(t *testing.T, name []byte) {
+		if m, ok := OPCUAName(name); ok && (words[m] == "" || len(name) < 3 || severityOf(name[0]) != m.Quality()) {
+			t.Errorf("%q is %v", name, m)
+		}
+		if m, ok := NE107(name); ok && words[m] == "" {
+			t.Errorf("%q is %v", name, m)
+		}
+	})
+}
+
+func severityOf(first byte) Quality {
+	return map[byte]Quality{'G': Good, 'U': Uncertain, 'B': Bad}[first]
+}
