@@ -38,7 +38,11 @@ func Load(path string) (*Site, error) {
 // Parse is [Load] for a text that is at hand; name stands for its path.
 func Parse(name string, text []byte) (*Site, error) {
 	s := &scope{file: name}
-	if root := s.document(text); len(s.faults) == 0 {
+	root := s.document(text)
+	if len(s.faults) == 0 {
+		s.blanks(root, "")
+	}
+	if len(s.faults) == 0 {
 		r := &reader{site: &Site{Digest: sha256.Sum256(text)}, file: name}
 		r.read(value{scope: s, node: root})
 		if len(s.faults) == 0 {

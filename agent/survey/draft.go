@@ -1,0 +1,246 @@
+package survey
+
+import (
+	"bufio"
+	"fmt"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+	"time"
+
+	"heatreeve/agent/site"
+)
+
+// Blank stands in a draft where only an engineer knows; no site file that still has one
+// passes a check.
+const Blank = site.Blank
+
+// Draft is what a draft of a site file is made from.
+type Draft struct {
+	Broker string // its address
+	Site   string // name of the plant; "": to be filled in
+	Topics []Topic
+	At     time.Time
+	For    time.Duration // how long was listened
+}
+
+// Write writes the draft: the tags that are understood, those that are not as remarks, and
+// the loads that names suggest. What an engineer must fill in is [Blank], and what was
+// guessed says why in a remark. The error is that of w.
+func (d Draft) Write(w io.Writer) error {
+	b := bufio.NewWriter(w)
+	d.head(b)
+	fmt.Fprint(b, "tags:\n")
+	d.tags(b)
+	d.loads(b)
+	return b.Flush()
+}
+
+func (d Draft) head(w io.Writer) {
+	site := d.Site
+	if site == "" {
+		site = Blank
+	}
+	fmt.Fprintf(w, `# A draft, from what %s carried in %v before %s.
+# Fill in each %s, check what is said to be guessed, and take out what you do not need;
+# then: heatreeve check FILE
+#
+# Heatreeve informs; it is no safety function, no alarm of record and no billing meter.
+# Site codes, the plant's own protection and licensed people come first.
+
+site: %s
+timezone: %s # such as Europe/Dublin
+barometer: 101.325 kPa # guessed: that of sea level; at the plant, not reduced
+
+broker: {url: %s}
+
+`, d.Broker, d.For, d.At.UTC().Format("2006-01-02 15:04 UTC"), Blank, quoted(site), Blank, quoted(d.Broker))
+}
+
+func (d Draft) tags(w io.Writer) {
+	var rest []*Signal
+	for i := range d.Topics {
+		t := &d.Topics[i]
+		for k := range t.Signals {
+			s := &t.Signals[k]
+			if s.Guess.dimension == 0 {
+				rest = append(rest, s)
+				continue
+			}
+			fmt.Fprintf(w, "  %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
+		}
+	}
+	if len(rest) == 0 {
+		return
+	}
+	fmt.Fprint(w, "\n  # Nothing tells what these are:\n")
+	for _, s := range rest {
+		fmt.Fprintf(w, "  # %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
+	}
+}
+
+// keys is the declaration of a tag.
+func (s *Signal) keys() string {
+	keys := []string{"topic: " + quoted(s.Topic)}
+	add := func(key, value string) {
+		if value != "" {
+			keys = append(keys, key+": "+value)
+		}
+	}
+	u := s.Guess.Unit
+	if u == "" {
+		u = Blank
+	}
+	add("unit", quoted(u))
+	add("samples", pointer(s.Samples))
+	add("value", pointer(s.Value))
+	add("time", pointer(s.Time))
+	add("accuracy", Blank)
+	if s.Guess.Counts {
+		add("counts", "{}")
+	} else {
+		add("max_age", maxAge(s.Gap))
+	}
+	return "{" + strings.Join(keys, ", ") + "}"
+}
+
+func pointer(p string) string {
+	if p == "" {
+		return ""
+	}
+	return quoted(p)
+}
+
+// ages are those that a draft gives.
+var ages = []time.Duration{10 * time.Second, 30 * time.Second, time.Minute, 2 * time.Minute, 5 * time.Minute, 10 * time.Minute, 30 * time.Minute, time.Hour}
+
+// maxAge allows for two messages that do not come; "" where the default of a minute does, or
+// too few came to tell.
+func maxAge(gap float64) string {
+	want := time.Duration(3 * gap * float64(time.Second))
+	if want <= 0 {
+		return ""
+	}
+	for _, age := range ages {
+		if want <= age {
+			if age == time.Minute {
+				return ""
+			}
+			return words(age)
+		}
+	}
+	return ""
+}
+
+func words(d time.Duration) string {
+	switch {
+	case d%time.Hour == 0:
+		return strconv.Itoa(int(d/time.Hour)) + " h"
+	case d%time.Minute == 0:
+		return strconv.Itoa(int(d/time.Minute)) + " min"
+	}
+	return strconv.Itoa(int(d/time.Second)) + " s"
+}
+
+// remark tells what was seen, and on what grounds the unit stands there.
+func remark(s *Signal) string {
+	said := number(s.Min)
+	if s.Max != s.Min {
+		said += " to " + number(s.Max)
+	}
+	g := s.Guess
+	switch {
+	case g.Unit == "" && g.Quantity != "":
+		said += "; " + g.Quantity + ", unit to fill in: " + g.Why
+	case g.Unit == "":
+		if g.Why != "" {
+			said += "; " + g.Why
+		}
+	case g.Sure:
+		said += "; " + g.Why
+	default:
+		said += "; guessed: " + g.Why
+	}
+	if s.Clock != nil && math.Abs(s.Clock.Behind) > 5 {
+		said += "; stamps " + Lag(s.Clock)
+	}
+	return " # " + oneLine(said)
+}
+
+// Lag tells how stamps lie.
+func Lag(c *Clock) string {
+	side, behind := "behind", c.Behind
+	if behind < 0 {
+		side, behind = "ahead", -behind
+	}
+	digits := func(s float64) string {
+		return time.Duration(s * float64(time.Second)).Round(10 * time.Millisecond).String()
+	}
+	said := fmt.Sprintf("%s %s ± %s", digits(behind), side, digits(c.Jitter))
+	if quarters := math.Round(behind / 900); quarters >= 1 && math.Abs(behind-900*quarters) < 30 {
+		said += ", as of another time zone"
+	}
+	return said
+}
+
+func (d Draft) loads(w io.Writer) {
+	found, doubts := Loads(d.Topics)
+	fmt.Fprint(w, "\nloads:\n")
+	for _, l := range found {
+		keys := []string{"fluid: " + Blank, "flow: " + quoted(l.Flow), "inlet: " + quoted(l.Inlet), "outlet: " + quoted(l.Outlet)}
+		pressure := Blank
+		if l.Pressure != "" {
+			pressure = quoted(l.Pressure)
+		}
+		keys = append(keys, "pressure: "+pressure)
+		if l.ByVolume {
+			keys = append(keys, "meter_at: "+Blank)
+		}
+		way := "takes: heat"
+		if l.Gives {
+			way = "gives: heat"
+		}
+		fmt.Fprintf(w, "  # inlet and outlet %s\n  %s:\n    stream: {%s, %s}\n", oneLine(l.Why), quoted(l.Name), strings.Join(keys, ", "), way)
+	}
+	if len(found) == 0 {
+		fmt.Fprintf(w, "  # No two temperatures and a flow have names that belong together.\n  %s:\n    stream: {fluid: %[1]s, flow: %[1]s, inlet: %[1]s, outlet: %[1]s, pressure: %[1]s, gives: heat}\n", Blank)
+	}
+	for _, doubt := range doubts {
+		fmt.Fprintf(w, "  # %s\n", oneLine(doubt))
+	}
+}
+
+// quoted writes text as a scalar of YAML 1.2: plain where nothing in it can be taken for
+// anything else, in double quotes otherwise.
+func quoted(text string) string {
+	odd := func(r rune) bool {
+		return !(r == '/' || r == '-' || r == '_' || r == '.' || r == '°' || r == '%' || r >= '0' && r <= '9' || r >= 'a' && r <= 'z' || r >= 'A' && r <= 'Z')
+	}
+	switch {
+	case text == Blank:
+		return text
+	case text == "" || strings.ContainsFunc(text, odd), strings.ContainsAny(text[:1], "-.%0123456789"), isWord(text):
+		return strconv.Quote(text)
+	}
+	return text
+}
+
+// isWord tells whether a plain scalar would be no text.
+func isWord(text string) bool {
+	switch strings.ToLower(text) {
+	case "true", "false", "null", "yes", "no", "on", "off", "y", "n":
+		return true
+	}
+	return false
+}
+
+// oneLine leaves out what would end a remark.
+func oneLine(text string) string {
+	return strings.Map(func(r rune) rune {
+		if r < ' ' || r == 0x7f || r == 0x85 || r == 0x2028 || r == 0x2029 {
+			return ' '
+		}
+		return r
+	}, text)
+}

@@ -1,0 +1,264 @@
+package survey
+
+import (
+	"encoding/binary"
+	"errors"
+	"fmt"
+	"math"
+	"os"
+	"strings"
+	"testing"
+	"time"
+
+	"heatreeve/agent/site"
+)
+
+const epoch = int64(1_790_000_000_000_000_000)
+
+// heard is a survey of messages that came a second apart, each topic's in its order.
+func heard(payloads map[string][]string) *Survey {
+	s := New(0)
+	for topic, all := range payloads {
+		for i, p := range all {
+			s.Hear(Message{Topic: topic, Payload: []byte(p), At: epoch + int64(i)*1e9})
+		}
+	}
+	return s
+}
+
+// signals are those of a survey by tag.
+func signals(s *Survey) map[string]Signal {
+	all := map[string]Signal{}
+	for _, t := range s.Topics() {
+		for _, sig := range t.Signals {
+			all[sig.Tag] = sig
+		}
+	}
+	return all
+}
+
+func stamped(format string, lag int64, values ...float64) []string {
+	var all []string
+	for i, v := range values {
+		all = append(all, fmt.Sprintf(format, v, (epoch+int64(i)*1e9-lag)/1e6))
+	}
+	return all
+}
+
+func TestValueTimeQualityAndUnitOfOneMessage(t *testing.T) {
+	s := heard(map[string][]string{"a/TT-1": stamped(`{"v": %g, "ts": %d, "q": 192, "u": "degC"}`, 250e6, 80.5, 80.25, 81)})
+	got := signals(s)["TT-1"]
+	if got.Value != "/v" || got.Time != "/ts" || got.Quality != "/q" || got.Unit != "/u" || got.Says != "degC" {
+		t.Errorf("pointers %q %q %q %q, unit %q", got.Value, got.Time, got.Quality, got.Unit, got.Says)
+	}
+	if got.Min != 80.25 || got.Max != 81 || got.Last != 81 || got.Decimals != 2 || got.Count != 3 {
+		t.Errorf("numbers %+v", got)
+	}
+	if g := got.Guess; g.Unit != "°C" || !g.Sure || g.Quantity != "temperature" {
+		t.Errorf("guess %+v", g)
+	}
+	if c := got.Clock; c == nil || math.Abs(c.Behind-0.25) > 1e-9 || c.Jitter != 0 {
+		t.Errorf("clock %+v, want 0.25 s behind without jitter", c)
+	}
+}
+
+func TestOneMessageOfManyTags(t *testing.T) {
+	s := heard(map[string][]string{"plc": stamped(`{"boiler": {"supply_temp_degC": %g, "flow_m3h": 12.5, "seq": 7}, "time": %d}`, 0, 80, 81, 82)})
+	all := signals(s)
+	for tag, want := range map[string][3]string{"supply_temp_degC": {"/boiler/supply_temp_degC", "/time", "°C"}, "flow_m3h": {"/boiler/flow_m3h", "/time", "m3/h"}} {
+		got := all[tag]
+		if got.Value != want[0] || got.Time != want[1] || got.Guess.Unit != want[2] {
+			t.Errorf("%s: value %q, time %q, unit %q; want %v", tag, got.Value, got.Time, got.Guess.Unit, want)
+		}
+	}
+	if len(all) != 2 {
+		t.Errorf("signals %v, want two: a sequence number measures nothing", all)
+	}
+}
+
+func TestListOfStampedSamples(t *testing.T) {
+	s := heard(map[string][]string{"a/PT-7": {fmt.Sprintf(`{"unit": "barg", "data": [{"t": %d, "value": 3.1}, {"t": %d, "value": 3.2}]}`, epoch/1e6-2000, epoch/1e6-1000)}})
+	got := signals(s)["PT-7"]
+	if got.Samples != "/data" || got.Value != "/value" || got.Time != "/t" || got.Count != 2 {
+		t.Errorf("samples %q, value %q, time %q, count %d", got.Samples, got.Value, got.Time, got.Count)
+	}
+}
+
+func TestShapes(t *testing.T) {
+	for _, tt := range []struct {
+		payloads []string
+		want     Shape
+	}{
+		{[]string{"21.5"}, Bare}, {[]string{" 007.50\r\n"}, Bare}, {[]string{""}, Nothing}, {[]string{"online"}, Words},
+		{[]string{`{"v": 1}`}, JSON}, {[]string{`[1, 2]`}, JSON}, {[]string{`{"v": 1`}, Words}, {[]string{"\x00\x01"}, Bytes},
+		{[]string{"1", "online"}, Mixed}, {[]string{strings.Repeat("9", 70000)}, TooLong},
+	} {
+		got := heard(map[string][]string{"a": tt.payloads}).Topics()
+		if len(got) != 1 || got[0].Shape != tt.want {
+			t.Errorf("%.20q: %+v, want %s", tt.payloads, got, tt.want)
+		}
+	}
+}
+
+func TestGuesses(t *testing.T) {
+	for _, tt := range []struct {
+		topic    string
+		payloads []string
+		unit     string
+		quantity string
+		sure     bool
+		counts   bool
+	}{
+		{"a/TT-201", []string{"80.1", "80.3"}, "°C", "temperature", false, false},
+		{"a/TI_12", []string{"353.2", "354"}, "K", "temperature", false, false},
+		{"a/FT-201", []string{"12.5"}, "", "volume flow", false, false},
+		{"a/FQ-201", []string{"1250", "1250"}, "", "volume", false, true},
+		{"a/PT-1", []string{"3.2"}, "", "pressure", false, false},
+		{"a/PDT-1", []string{"0.2"}, "", "", false, false},
+		{"hall/boiler/supplyTemperature", []string{"82"}, "°C", "temperature", false, false},
+		{"hall/meter/energy_kwh", []string{"100", "100"}, "kWh", "energy", true, true},
+		{"hall/meter/flow_kg_h", []string{"100"}, "kg/h", "mass flow", true, false},
+		{"hall/lamp", []string{"1", "0"}, "", "", false, false},
+		{"hall/x", []string{`{"value": 3, "unit": "bananas"}`}, "", "", false, false},
+		{"hall/counter", []string{"1", "2", "3", "4", "5", "6", "7"}, "", "", false, true},
+	} {
+		topics := heard(map[string][]string{tt.topic: tt.payloads}).Topics()
+		if len(topics) != 1 || len(topics[0].Signals) != 1 {
+			t.Errorf("%s: %+v, want one signal", tt.topic, topics)
+			continue
+		}
+		g := topics[0].Signals[0].Guess
+		if g.Unit != tt.unit || g.Quantity != tt.quantity || g.Sure != tt.sure || g.Counts != tt.counts {
+			t.Errorf("%s: %+v, want %+v", tt.topic, g, tt)
+		}
+		if (g.Unit != "" || g.Quantity != "") && g.Why == "" {
+			t.Errorf("%s: no reason given", tt.topic)
+		}
+	}
+}
+
+// What the broker had kept tells nothing of rate and clock.
+func TestRetainedIsApart(t *testing.T) {
+	s := New(0)
+	old := fmt.Sprintf(`{"v": 1, "ts": %d}`, epoch/1e6-3600_000)
+	s.Hear(Message{Topic: "a", Payload: []byte(old), Retained: true, At: epoch})
+	got := s.Topics()[0]
+	if got.Retained != 1 || got.Every != 0 || got.Signals[0].Clock != nil {
+		t.Errorf("%+v, clock %+v; want one retained, no rate, no clock", got, got.Signals[0].Clock)
+	}
+}
+
+func TestClockOfAnotherZone(t *testing.T) {
+	s := heard(map[string][]string{"a/TT-1": stamped(`{"v": %g, "ts": %d}`, 3600e9, 1, 2, 3)})
+	c := signals(s)["TT-1"].Clock
+	if c == nil || !strings.Contains(Lag(c), "another time zone") {
+		t.Errorf("clock %+v; want an hour behind, as of another time zone", c)
+	}
+}
+
+func TestTagNamesAreApart(t *testing.T) {
+	all := signals(heard(map[string][]string{"n/a/temp": {"1"}, "n/b/temp": {"2"}, "n/b/12": {"3"}, "n/b/TT-1": {"4"}}))
+	for _, want := range []string{"a-temp", "b-temp", "tag-12", "TT-1"} {
+		if _, ok := all[want]; !ok {
+			t.Errorf("no tag %q among %d", want, len(all))
+		}
+	}
+}
+
+// Memory is bounded whatever a broker sends.
+func TestBounds(t *testing.T) {
+	s := New(10)
+	var many strings.Builder
+	for i := range 1000 {
+		fmt.Fprintf(&many, `"k%d": %d,`, i, i)
+	}
+	payload := []byte("{" + many.String() + `"last": 1}`)
+	for i := range 100 {
+		s.Hear(Message{Topic: fmt.Sprint("t", i), Payload: payload, At: epoch})
+	}
+	p := s.Progress()
+	if p.Topics != 10 || p.Beyond != 90 || p.Messages != 100 {
+		t.Errorf("progress %+v, want 10 topics and 90 messages beyond", p)
+	}
+	for _, got := range s.Topics() {
+		if len(got.Signals) > MostSeries || !got.Crowded {
+			t.Errorf("%s: %d signals, crowded %t", got.Name, len(got.Signals), got.Crowded)
+		}
+	}
+	s.Hear(Message{Topic: "$SYS/load", Payload: []byte("1"), At: epoch})
+	if s.Progress().Messages != 100 {
+		t.Error("the broker's own topics are counted")
+	}
+}
+
+func plant() map[string][]string {
+	return map[string][]string{
+		"creamery/hw/TT-201": stamped(`{"v": %g, "ts": %d}`, 0, 130, 129.5),
+		"creamery/hw/TT-202": stamped(`{"v": %g, "ts": %d}`, 0, 90, 90.5),
+		"creamery/hw/FT-201": stamped(`{"v": %g, "ts": %d}`, 0, 13.5, 13.6),
+		"creamery/hw/PT-201": stamped(`{"v": %g, "ts": %d}`, 0, 6.1, 6.1),
+		"hall/boiler_supply": {"80", "81"}, "hall/lamp": {"1"},
+		"east/heat meter/flow_m3h": {"4", "5"}, "east/heat meter/supply temp": {"70", "71"}, "east/heat meter/return temp": {"50", "50"},
+		`odd/"quoted": #, {[x]}`: {`{"temp": 3, "é": 4}`},
+	}
+}
+
+func TestLoadsByNames(t *testing.T) {
+	found, _ := Loads(heard(plant()).Topics())
+	if len(found) != 2 {
+		t.Fatalf("%+v, want two loads", found)
+	}
+	east, hw := found[1], found[0]
+	if hw.Name != "hw-20" || hw.Flow != "FT-201" || hw.Inlet != "TT-201" || hw.Outlet != "TT-202" || hw.Pressure != "PT-201" || !hw.ByVolume || !hw.Gives {
+		t.Errorf("first load %+v", hw)
+	}
+	if east.Inlet != "supply_temp" || east.Outlet != "return_temp" || !strings.Contains(east.Why, "words") {
+		t.Errorf("second load %+v", east)
+	}
+}
+
+// Of a draft a check finds nothing wrong but what is to be filled in, however odd topics are.
+func TestDraftWantsNothingButItsBlanks(t *testing.T) {
+	var text strings.Builder
+	d := Draft{Broker: "mqtt://127.0.0.1:1883", Topics: heard(plant()).Topics(), At: time.Unix(0, epoch), For: 30 * time.Second}
+	if err := d.Write(&text); err != nil {
+		t.Fatal(err)
+	}
+	if os.Getenv("SHOW") != "" {
+		t.Log(text.String())
+	}
+	_, err := site.Parse("draft.yaml", []byte(text.String()))
+	var faults site.Faults
+	if !errors.As(err, &faults) {
+		t.Fatalf("%v, want faults", err)
+	}
+	for _, f := range faults {
+		if f.Message != "is still to be filled in" {
+			t.Errorf("%v\n%s", f, text.String())
+		}
+	}
+}
+
+func FuzzHear(f *testing.F) {
+	f.Add("a/TT-1", []byte(`{"v": 1, "data": [{"t": 1, "v": [1, [2]]}]}`), false)
+	f.Add("a", []byte("1e400"), true)
+	f.Fuzz(func(t *testing.T, topic string, payload []byte, retained bool) {
+		s := New(2)
+		for i := range 3 {
+			s.Hear(Message{Topic: topic, Payload: payload, Retained: retained, At: epoch + int64(i)*1e9})
+		}
+		d := Draft{Broker: "mqtt://h:1883", Topics: s.Topics()}
+		var text strings.Builder
+		if err := d.Write(&text); err != nil {
+			t.Fatal(err)
+		}
+		if n := binary.Size(payload); n < 4096 && text.Len() > 1<<20 {
+			t.Errorf("a draft of %d bytes from a payload of %d", text.Len(), n)
+		}
+		for line := range strings.Lines(text.String()) {
+			if strings.ContainsAny(strings.TrimSuffix(line, "\n"), "\x00\r\x1b") {
+				t.Errorf("line %q", line)
+			}
+		}
+	})
+}
