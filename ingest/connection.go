@@ -67,6 +67,9 @@ func (s *Session) subscribe(ctx context.Context, c mqtt.Client) error {
 		}
 	}
 	s.tally.subscribed(granted, refused)
+	if s.listening != nil {
+		s.listening.granted(granted)
+	}
 	if len(refused) > 0 {
 		names := slices.Sorted(maps.Keys(refused))
 		s.o.Log.Warn("the broker refuses subscriptions; check its access list", "count", len(names), "topics", strings.Join(names[:min(5, len(names))], " "))
@@ -116,6 +119,9 @@ func (s *Session) failed(ctx context.Context, err error) {
 		again = st.LastError == why
 		st.LastError = why
 	})
+	if s.listening != nil {
+		s.listening.refused(why)
+	}
 	if !again {
 		s.o.Log.Warn("cannot connect to the broker; trying on", "broker", s.broker.String(), "error", why)
 	}

@@ -51,6 +51,11 @@ type Options struct {
 	Ahead  time.Duration // see [NewDecoder]
 	Buffer int           // readings held until taken; 0: DefaultBuffer
 
+	// Transient sessions leave nothing at the broker, and get nothing that came while
+	// they were away: those of a command that listens for a while. The first attempt to
+	// connect is not repeated.
+	Transient bool
+
 	Presence *Presence // nil: none, and no will
 	Outbox   int       // messages held until published; 0: DefaultOutbox
 

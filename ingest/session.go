@@ -37,8 +37,9 @@ type Session struct {
 	will      []byte    // payload, which the library holds; nil without a presence
 	presented time.Time // of the attempt under way
 
-	outcomes []Outcome // of the message at hand
-	short    shortLives
+	listening *listening // nil of a session that decodes
+	outcomes  []Outcome  // of the message at hand
+	short     shortLives
 }
 
 // New checks tags and options and prepares a session; nothing is sent before
@@ -108,10 +109,10 @@ func (s *Session) Run(ctx context.Context) error {
 
 func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 	o := mqtt.NewClientOptions().AddBroker("tcp://" + s.broker.address()).SetProtocolVersion(4)
-	o.SetClientID(s.o.ClientID).SetCleanSession(false)
+	o.SetClientID(s.o.ClientID).SetCleanSession(s.o.Transient)
 	o.SetKeepAlive(s.o.KeepAlive).SetPingTimeout(s.o.PingTimeout).SetConnectTimeout(s.o.ConnectTimeout)
 	o.SetAutoReconnect(true).SetMaxReconnectInterval(s.o.MaxBackoff)
-	o.SetConnectRetry(true).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
+	o.SetConnectRetry(!s.o.Transient).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
 	o.SetCredentialsProvider(s.credentials)
 	if s.will != nil {
 		o.SetBinaryWill(s.o.Presence.Topic, s.will, 1, true)
@@ -165,6 +166,10 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 // by, and in order.
 func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 	arrival := s.o.Now().UnixNano()
+	if s.listening != nil {
+		s.listening.hear(Heard{Topic: string(d.topic), Payload: d.payload, Retained: d.retained, At: arrival})
+		return
+	}
 	topic := string(d.topic)
 	out, known := s.decoder.Decode(topic, d.payload, arrival, d.retained, s.outcomes[:0])
 	s.outcomes = out

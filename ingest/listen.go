@@ -1,0 +1,89 @@
+package ingest
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"strings"
+	"unicode/utf8"
+)
+
+// Heard is a message as the broker delivered it.
+type Heard struct {
+	Topic    string
+	Payload  []byte // good until the handler returns; cut one byte beyond [MaxPayload]
+	Retained bool
+	At       int64
+}
+
+// Listen takes in all messages of some topic filters, undecoded, and hands them to hear,
+// one after the other and in the broker's order, until ctx ends; then it returns nil. It
+// keeps no session at the broker and asks for quality of service 0, so that it holds
+// nothing up and leaves nothing behind; a message that comes while hear is busy for long
+// may be dropped by the broker. ClientID must be one that nobody else uses.
+//
+// The error is that of the first attempt to connect, or says that the broker grants none
+// of the filters. A connection lost later is made anew.
+func Listen(ctx context.Context, o Options, filters []string, hear func(Heard)) error {
+	o, wrong := o.withDefaults()
+	b, _ := parseBroker(o.URL) // its fault is among those of the options
+	faults := []error{wrong}
+	if len(filters) == 0 {
+		faults = append(faults, errors.New("no topic filter; give one, such as # for all topics"))
+	}
+	for _, f := range filters {
+		faults = append(faults, checkFilter(f))
+	}
+	if err := errors.Join(faults...); err != nil {
+		return err
+	}
+	ctx, end := context.WithCancelCause(ctx)
+	defer end(nil)
+	o.Transient = true
+	s := &Session{o: o, broker: b, inbox: newInbox(0, 0), outbox: newOutbox(o.Outbox), tally: newTally(0)}
+	s.listening = &listening{
+		hear: hear,
+		refused: func(why string) {
+			if s.Stats().Connections == 0 {
+				end(errors.New(why))
+			}
+		},
+		granted: func(n int) {
+			if n == 0 {
+				end(fmt.Errorf("the broker grants none of the topic filters %s; check its access list", strings.Join(filters, ", ")))
+			}
+		},
+	}
+	for _, f := range filters {
+		s.topics = append(s.topics, &topic{name: f})
+	}
+	if err := s.Run(ctx); err != nil {
+		return err
+	}
+	if why := context.Cause(ctx); !errors.Is(why, context.Canceled) && !errors.Is(why, context.DeadlineExceeded) {
+		return fmt.Errorf("%s: %w", b, why)
+	}
+	return nil
+}
+
+// listening is what a session does that hands messages on as they are.
+type listening struct {
+	hear    func(Heard)
+	refused func(why string) // an attempt to connect failed
+	granted func(n int)      // so many filters were, on a new connection
+}
+
+// checkFilter holds a topic filter to MQTT 3.1.1, section 4.7.
+func checkFilter(filter string) error {
+	if filter == "" || len(filter) > maxTopic || !utf8.ValidString(filter) || strings.ContainsRune(filter, 0) {
+		return fmt.Errorf("topic filter %.60q must be UTF-8 without NUL, of 1 to %d bytes", filter, maxTopic)
+	}
+	levels := strings.Split(filter, "/")
+	for i, level := range levels {
+		hash := strings.Contains(level, "#") && (level != "#" || i != len(levels)-1)
+		if hash || strings.Contains(level, "+") && level != "+" {
+			return fmt.Errorf("topic filter %q: + stands for one level alone, and # for all that follow, at the end", filter)
+		}
+	}
+	return nil
+}
