@@ -34,14 +34,17 @@ var arrows = map[string][]string{
 		"agent/loads",
 	},
 	"agent/parquet": {},
+	"agent/survey": {
+		"agent/site", "ingest", "thermo/unit",
+	},
 	"agent/metrics": {
 		"agent/view", "agent/loads", "agent/design",
 	},
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
-	"agent/cmd/heatreeve": {"agent", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent/cmd/heatreeve": {"agent", "agent/survey", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
 

@@ -10,6 +10,14 @@ import (
 	"heatreeve/ingest"
 )
 
+// CheckListening says what is wrong with an address or a topic filter before anything is
+// tried.
+func CheckListening(b site.Broker, filters []string) error {
+	o := connectionOf(b)
+	o.ClientID = "heatreeve-survey"
+	return ingest.CheckListening(o, filters)
+}
+
 // Listen hands what a broker delivers of some topic filters to the survey until ctx ends,
 // as one more client that leaves nothing behind. The error is why it could not begin.
 func Listen(ctx context.Context, b site.Broker, filters []string, s *survey.Survey) error {

@@ -11,20 +11,25 @@ import (
 
 // newSession prepares the session with the site's broker.
 func newSession(s *site.Site, o Options) (*ingest.Session, error) {
-	b := s.Broker
-	options := ingest.Options{
-		URL: b.URL, ClientID: b.ClientID, Username: b.Username,
-		CAFile: b.CAFile, CertFile: b.CertFile, KeyFile: b.KeyFile, ServerName: b.ServerName,
-		Ahead: s.Timing.Ahead, Log: o.Log, Now: o.Now,
-	}
-	if b.PasswordFile != "" || b.PasswordEnv != "" {
-		options.Password = b.Password
-	}
+	options := connectionOf(s.Broker)
+	options.Ahead, options.Log, options.Now = s.Timing.Ahead, o.Log, o.Now
 	session, err := ingest.New(signalsOf(s), options)
 	if err != nil {
 		return nil, fmt.Errorf("broker session: %w", err)
 	}
 	return session, nil
+}
+
+// connectionOf is what leads to a broker.
+func connectionOf(b site.Broker) ingest.Options {
+	o := ingest.Options{
+		URL: b.URL, ClientID: b.ClientID, Username: b.Username,
+		CAFile: b.CAFile, CertFile: b.CertFile, KeyFile: b.KeyFile, ServerName: b.ServerName,
+	}
+	if b.PasswordFile != "" || b.PasswordEnv != "" {
+		o.Password = b.Password
+	}
+	return o
 }
 
 // notify tells a service manager about the agent's state, where there is one; it

@@ -25,18 +25,11 @@ type Heard struct {
 // The error is that of the first attempt to connect, or says that the broker grants none
 // of the filters. A connection lost later is made anew.
 func Listen(ctx context.Context, o Options, filters []string, hear func(Heard)) error {
-	o, wrong := o.withDefaults()
-	b, _ := parseBroker(o.URL) // its fault is among those of the options
-	faults := []error{wrong}
-	if len(filters) == 0 {
-		faults = append(faults, errors.New("no topic filter; give one, such as # for all topics"))
-	}
-	for _, f := range filters {
-		faults = append(faults, checkFilter(f))
-	}
-	if err := errors.Join(faults...); err != nil {
+	if err := CheckListening(o, filters); err != nil {
 		return err
 	}
+	o, _ = o.withDefaults()
+	b, _ := parseBroker(o.URL)
 	ctx, end := context.WithCancelCause(ctx)
 	defer end(nil)
 	o.Transient = true
@@ -64,6 +57,19 @@ func Listen(ctx context.Context, o Options, filters []string, hear func(Heard)) 
 		return fmt.Errorf("%s: %w", b, why)
 	}
 	return nil
+}
+
+// CheckListening returns every fault of what [Listen] is to be given, joined.
+func CheckListening(o Options, filters []string) error {
+	_, wrong := o.withDefaults()
+	faults := []error{wrong}
+	if len(filters) == 0 {
+		faults = append(faults, errors.New("no topic filter; give one, such as # for all topics"))
+	}
+	for _, f := range filters {
+		faults = append(faults, checkFilter(f))
+	}
+	return errors.Join(faults...)
 }
 
 // listening is what a session does that hands messages on as they are.

@@ -18,7 +18,7 @@ const Blank = site.Blank
 
 // Draft is what a draft of a site file is made from.
 type Draft struct {
-	Broker string // its address
+	Broker site.Broker
 	Site   string // name of the plant; "": to be filled in
 	Topics []Topic
 	At     time.Time
@@ -38,9 +38,9 @@ func (d Draft) Write(w io.Writer) error {
 }
 
 func (d Draft) head(w io.Writer) {
-	site := d.Site
-	if site == "" {
-		site = Blank
+	name := d.Site
+	if name == "" {
+		name = Blank
 	}
 	fmt.Fprintf(w, `# A draft, from what %s carried in %v before %s.
 # Fill in each %s, check what is said to be guessed, and take out what you do not need;
@@ -53,9 +53,23 @@ site: %s
 timezone: %s # such as Europe/Dublin
 barometer: 101.325 kPa # guessed: that of sea level; at the plant, not reduced
 
-broker: {url: %s}
+broker: {%s}
 
-`, d.Broker, d.For, d.At.UTC().Format("2006-01-02 15:04 UTC"), Blank, quoted(site), Blank, quoted(d.Broker))
+`, oneLine(d.Broker.URL), d.For, d.At.UTC().Format("2006-01-02 15:04 UTC"), Blank, quoted(name), Blank, brokerKeys(d.Broker))
+}
+
+// brokerKeys are those that led to the broker.
+func brokerKeys(b site.Broker) string {
+	keys := []string{"url: " + quoted(b.URL)}
+	for _, k := range [...][2]string{
+		{"username", b.Username}, {"password_file", b.PasswordFile}, {"password_env", b.PasswordEnv},
+		{"ca", b.CAFile}, {"certificate", b.CertFile}, {"key", b.KeyFile}, {"server_name", b.ServerName},
+	} {
+		if k[1] != "" {
+			keys = append(keys, k[0]+": "+quoted(k[1]))
+		}
+	}
+	return strings.Join(keys, ", ")
 }
 
 func (d Draft) tags(w io.Writer) {
@@ -178,7 +192,7 @@ func Lag(c *Clock) string {
 		return time.Duration(s * float64(time.Second)).Round(10 * time.Millisecond).String()
 	}
 	said := fmt.Sprintf("%s %s ± %s", digits(behind), side, digits(c.Jitter))
-	if quarters := math.Round(behind / 900); quarters >= 1 && math.Abs(behind-900*quarters) < 30 {
+	if quarters := math.Round(behind / 900); quarters >= 1 && math.Abs(behind-900*quarters) < 30 && c.Jitter < 30 {
 		said += ", as of another time zone"
 	}
 	return said
@@ -202,6 +216,9 @@ func (d Draft) loads(w io.Writer) {
 			way = "gives: heat"
 		}
 		fmt.Fprintf(w, "  # inlet and outlet %s\n  %s:\n    stream: {%s, %s}\n", oneLine(l.Why), quoted(l.Name), strings.Join(keys, ", "), way)
+		if l.Witness != "" {
+			fmt.Fprintf(w, "    witness: %s # its own count of the heat, shown beside ours\n", quoted(l.Witness))
+		}
 	}
 	if len(found) == 0 {
 		fmt.Fprintf(w, "  # No two temperatures and a flow have names that belong together.\n  %s:\n    stream: {fluid: %[1]s, flow: %[1]s, inlet: %[1]s, outlet: %[1]s, pressure: %[1]s, gives: heat}\n", Blank)

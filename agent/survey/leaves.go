@@ -52,7 +52,7 @@ func leaves(payload []byte, leaf func(pointer string, kind jsontext.Kind, raw []
 			if isName(d, depth) {
 				continue
 			}
-			if pointer, ok := place(d); ok {
+			if pointer, ok := where(d); ok {
 				leaf(pointer, kind, value)
 			}
 		}
@@ -68,8 +68,8 @@ func isName(d *jsontext.Decoder, depth int) bool {
 	return kind == '{' && n%2 == 1
 }
 
-// place is the pointer of what was read last; not ok beyond the elements looked at.
-func place(d *jsontext.Decoder) (pointer string, ok bool) {
+// where is the pointer of what was read last; not ok beyond the elements looked at.
+func where(d *jsontext.Decoder) (pointer string, ok bool) {
 	tokens := strings.Split(string(d.StackPointer()), "/")
 	for level := 1; level < len(tokens); level++ {
 		kind, _ := d.StackIndex(level)

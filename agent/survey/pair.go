@@ -14,9 +14,12 @@ import (
 type Load struct {
 	Name                          string
 	Flow, Inlet, Outlet, Pressure string // tags; Pressure "" where none is near
+	Witness                       string // a register of energy beside them, "" where there is none
 	ByVolume                      bool   // the flow is one by volume, which wants its meter's place
 	Gives                         bool   // the inlet is hotter
 	Why                           string
+
+	stem string
 }
 
 // Loads returns the loads that the names of signals suggest, and why others were not made
@@ -36,29 +39,31 @@ func Loads(topics []Topic) (found []Load, doubts []string) {
 			groups[at].add(s)
 		}
 	}
-	names := map[string]bool{}
+	short := map[string]int{}
 	for _, at := range slices.Sorted(maps.Keys(groups)) {
-		g := groups[at]
-		l, doubt := g.load()
+		l, doubt := groups[at].load()
 		if doubt != "" {
 			doubts = append(doubts, doubt)
 		}
-		if l == nil {
-			continue
+		if l != nil {
+			found = append(found, *l)
+			short[place(at)]++
 		}
-		for base, n := l.Name, 2; names[l.Name]; n++ {
-			l.Name = fmt.Sprintf("%s-%d", base, n)
+	}
+	for i := range found {
+		if l := &found[i]; short[place(l.stem)] == 1 {
+			l.Name = place(l.stem)
+		} else {
+			l.Name = strings.ReplaceAll(l.stem, "/", "-")
 		}
-		names[l.Name] = true
-		found = append(found, *l)
 	}
 	return found, doubts
 }
 
 // group are the signals of one stem.
 type group struct {
-	stem                        string
-	temperatures, flows, gauges []*Signal
+	stem                                  string
+	temperatures, flows, gauges, energies []*Signal
 }
 
 func (g *group) add(s *Signal) {
@@ -69,6 +74,8 @@ func (g *group) add(s *Signal) {
 		g.flows = append(g.flows, s)
 	case unit.Pressure:
 		g.gauges = append(g.gauges, s)
+	case unit.Energy:
+		g.energies = append(g.energies, s)
 	}
 }
 
@@ -88,10 +95,13 @@ func (g *group) load() (*Load, string) {
 	}
 	in, out, why := sides(t[0], t[1])
 	flow := g.flows[0]
-	l := &Load{Name: loadName(g.stem), Flow: flow.Tag, Inlet: in.Tag, Outlet: out.Tag, Gives: in.Last >= out.Last, Why: why}
+	l := &Load{stem: g.stem, Flow: flow.Tag, Inlet: in.Tag, Outlet: out.Tag, Gives: in.Last >= out.Last, Why: why}
 	l.ByVolume = flow.Guess.dimension == unit.VolumeFlow || flow.Guess.dimension == unit.Volume
 	if len(g.gauges) == 1 {
 		l.Pressure = g.gauges[0].Tag
+	}
+	if len(g.energies) == 1 {
+		l.Witness = g.energies[0].Tag
 	}
 	return l, doubt
 }
@@ -178,14 +188,13 @@ func kept(name string) []string {
 	})
 }
 
-// loadName is the end of a stem that is no number.
-func loadName(stem string) string {
+// place is the end of a stem that is no number.
+func place(stem string) string {
 	parts := strings.Split(stem, "/")
-	for len(parts) > 1 && strings.Trim(parts[len(parts)-1], "0123456789") == "" {
-		if second := parts[len(parts)-2]; strings.Trim(second, "0123456789") != "" {
-			return second + "-" + parts[len(parts)-1]
+	for _, p := range slices.Backward(parts) {
+		if strings.Trim(p, "0123456789") != "" {
+			return p
 		}
-		parts = parts[:len(parts)-1]
 	}
-	return parts[len(parts)-1]
+	return stem
 }

@@ -209,10 +209,10 @@ func TestLoadsByNames(t *testing.T) {
 		t.Fatalf("%+v, want two loads", found)
 	}
 	east, hw := found[1], found[0]
-	if hw.Name != "hw-20" || hw.Flow != "FT-201" || hw.Inlet != "TT-201" || hw.Outlet != "TT-202" || hw.Pressure != "PT-201" || !hw.ByVolume || !hw.Gives {
+	if hw.Name != "hw" || hw.Flow != "FT-201" || hw.Inlet != "TT-201" || hw.Outlet != "TT-202" || hw.Pressure != "PT-201" || !hw.ByVolume || !hw.Gives {
 		t.Errorf("first load %+v", hw)
 	}
-	if east.Inlet != "supply_temp" || east.Outlet != "return_temp" || !strings.Contains(east.Why, "words") {
+	if east.Inlet != "supply_temp" || east.Witness != "" || east.Outlet != "return_temp" || !strings.Contains(east.Why, "words") {
 		t.Errorf("second load %+v", east)
 	}
 }
@@ -220,7 +220,7 @@ func TestLoadsByNames(t *testing.T) {
 // Of a draft a check finds nothing wrong but what is to be filled in, however odd topics are.
 func TestDraftWantsNothingButItsBlanks(t *testing.T) {
 	var text strings.Builder
-	d := Draft{Broker: "mqtt://127.0.0.1:1883", Topics: heard(plant()).Topics(), At: time.Unix(0, epoch), For: 30 * time.Second}
+	d := Draft{Broker: site.Broker{URL: "mqtt://127.0.0.1:1883", Username: "survey", PasswordFile: "/etc/heatreeve/password: #"}, Topics: heard(plant()).Topics(), At: time.Unix(0, epoch), For: 30 * time.Second}
 	if err := d.Write(&text); err != nil {
 		t.Fatal(err)
 	}
@@ -247,7 +247,7 @@ func FuzzHear(f *testing.F) {
 		for i := range 3 {
 			s.Hear(Message{Topic: topic, Payload: payload, Retained: retained, At: epoch + int64(i)*1e9})
 		}
-		d := Draft{Broker: "mqtt://h:1883", Topics: s.Topics()}
+		d := Draft{Broker: site.Broker{URL: "mqtt://h:1883"}, Topics: s.Topics()}
 		var text strings.Builder
 		if err := d.Write(&text); err != nil {
 			t.Fatal(err)

@@ -3,18 +3,16 @@ package main
 import (
 	"bufio"
 	"context"
-	"crypto/rand"
 	"errors"
 	"fmt"
 	"io"
-	"log/slog"
 	"os"
 	"strings"
 	"time"
 
+	"heatreeve/agent"
 	"heatreeve/agent/site"
 	"heatreeve/agent/survey"
-	"heatreeve/ingest"
 )
 
 // surveyHelp tells what a survey does and what not.
@@ -55,20 +53,23 @@ func runSurvey(ctx context.Context, c *call) error {
 	case *most < 1:
 		return wrongf("heatreeve survey: --most %d: at least 1", *most)
 	}
+	if len(filters) == 0 {
+		filters = list{"#"}
+	}
+	if err := agent.CheckListening(b, filters); err != nil {
+		return usageError{err}
+	}
 	if *draft != "" && *draft != "-" {
 		if _, err := os.Lstat(*draft); err == nil {
 			return wrongf("heatreeve survey: --draft %q is there already; give another name", *draft)
 		}
-	}
-	if len(filters) == 0 {
-		filters = list{"#"}
 	}
 	s := survey.New(*most)
 	heard, err := c.listen(ctx, b, filters, *length, s)
 	if err != nil {
 		return err
 	}
-	return c.tellSurvey(s, survey.Draft{Broker: b.URL, At: time.Now(), For: heard}, *draft, *format)
+	return c.tellSurvey(s, survey.Draft{Broker: b, At: time.Now(), For: heard}, *draft, *format)
 }
 
 // listen gathers what comes in for a while, and returns for how long it did: an interrupt
@@ -78,11 +79,7 @@ func (c *call) listen(ctx context.Context, b site.Broker, filters []string, leng
 	defer cancel()
 	begun := time.Now()
 	stop := c.tellProgress(s, begun, length)
-	o := b.Options()
-	o.ClientID, o.Log = "heatreeve-survey-"+rand.Text()[:8], slog.New(slog.DiscardHandler)
-	err := ingest.Listen(listening, o, filters, func(h ingest.Heard) {
-		s.Hear(survey.Message{Topic: h.Topic, Payload: h.Payload, Retained: h.Retained, At: h.At})
-	})
+	err := agent.Listen(listening, b, filters, s)
 	stop()
 	return min(time.Since(begun), length).Round(time.Second), err
 }
@@ -115,8 +112,8 @@ func (c *call) tellProgress(s *survey.Survey, begun time.Time, length time.Durat
 // tellSurvey writes what was found, and the draft where one is wanted.
 func (c *call) tellSurvey(s *survey.Survey, d survey.Draft, draft, format string) error {
 	d.Topics = s.Topics()
-	if d.Broker != "" && len(d.Topics) == 0 {
-		return fmt.Errorf("%s: not one message in %v; check the topics and the access rules of the broker, or listen for longer", d.Broker, d.For)
+	if len(d.Topics) == 0 {
+		return fmt.Errorf("%s: not one message in %v; check the topics and the access rules of the broker, or listen for longer", d.Broker.URL, d.For)
 	}
 	out := bufio.NewWriter(c.stdout)
 	var err error

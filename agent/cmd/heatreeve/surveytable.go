@@ -22,7 +22,7 @@ type surveyed struct {
 
 func surveyJSON(s *survey.Survey, d survey.Draft) surveyed {
 	p := s.Progress()
-	return surveyed{d.Broker, d.For.Seconds(), p.Messages, p.Beyond, d.Topics}
+	return surveyed{d.Broker.URL, d.For.Seconds(), p.Messages, p.Beyond, d.Topics}
 }
 
 const surveyLegend = `at: JSON Pointer of the value; a bare number has none. ?: guessed.
@@ -32,7 +32,7 @@ stamps: of the payload, against this machine's clock at arrival.
 // surveyTable has a line for each number, and for each topic that carries none.
 func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 	p := s.Progress()
-	fmt.Fprintf(w, "%s, %v: %d topics, %d messages\n\n", d.Broker, d.For, p.Topics, p.Messages)
+	fmt.Fprintf(w, "%s, %v: %d topics, %d messages\n\n", d.Broker.URL, d.For, p.Topics, p.Messages)
 	t := newColumns(0)
 	t.line("topic", "at", "every", "values", "likely", "stamps")
 	for i := range d.Topics {
@@ -47,7 +47,11 @@ func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 		fmt.Fprint(w, "\nLoads that names suggest:\n")
 	}
 	for _, l := range found {
-		fmt.Fprintln(w, indented(fmt.Sprintf("%s: flow %s, inlet %s, outlet %s", l.Name, l.Flow, l.Inlet, l.Outlet), "  "))
+		say := fmt.Sprintf("%s: flow %s, inlet %s, outlet %s", l.Name, l.Flow, l.Inlet, l.Outlet)
+		if l.Witness != "" {
+			say += ", witness " + l.Witness
+		}
+		fmt.Fprintln(w, indented(say, "  "))
 	}
 	for _, doubt := range doubts {
 		fmt.Fprintln(w, wrapped("note: "+legible(doubt), "  "))
@@ -65,7 +69,7 @@ func topicLines(t *columns, topic *survey.Topic) {
 	for i := range topic.Signals {
 		s := &topic.Signals[i]
 		at := legible(s.Samples + strings.Repeat("/*", min(1, len(s.Samples))) + s.Value)
-		t.line(name, at, every(topic.Every, topic.Retained == topic.Messages), spanOf(s), likely(s), stampsOf(s))
+		t.line(name, at, every(topic.Every, topic.Retained == topic.Messages), valuesOf(s), likely(s), stampsOf(s))
 		name = ""
 	}
 }
@@ -84,15 +88,15 @@ func every(s float64, kept bool) string {
 	}
 }
 
-func spanOf(s *survey.Signal) string {
-	low, high := decimals(s.Min, s.Decimals), decimals(s.Max, s.Decimals)
+func valuesOf(s *survey.Signal) string {
+	low, high := fixed(s.Min, s.Decimals), fixed(s.Max, s.Decimals)
 	if low == high {
 		return low
 	}
 	return low + " to " + high
 }
 
-func decimals(x float64, n int) string {
+func fixed(x float64, n int) string {
 	if x >= 1e9 || x <= -1e9 || n > 9 {
 		return strconv.FormatFloat(x, 'g', 6, 64)
 	}
