@@ -5,7 +5,6 @@ import (
 	"errors"
 	"fmt"
 	"strings"
-	"unicode/utf8"
 )
 
 // Heard is a message as the broker delivered it.
@@ -33,7 +32,7 @@ func Listen(ctx context.Context, o Options, filters []string, hear func(Heard)) 
 	ctx, end := context.WithCancelCause(ctx)
 	defer end(nil)
 	o.Transient = true
-	s := &Session{o: o, broker: b, inbox: newInbox(0, 0), outbox: newOutbox(o.Outbox), tally: newTally(0)}
+	s := &Session{o: o, broker: b, strays: newStrays(), inbox: newInbox(0, 0), outbox: newOutbox(o.Outbox), tally: newTally(0)}
 	s.listening = &listening{
 		hear: hear,
 		refused: func(why string) {
@@ -77,19 +76,4 @@ type listening struct {
 	hear    func(Heard)
 	refused func(why string) // an attempt to connect failed
 	granted func(n int)      // so many filters were, on a new connection
-}
-
-// checkFilter holds a topic filter to MQTT 3.1.1, section 4.7.
-func checkFilter(filter string) error {
-	if filter == "" || len(filter) > maxTopic || !utf8.ValidString(filter) || strings.ContainsRune(filter, 0) {
-		return fmt.Errorf("topic filter %.60q must be UTF-8 without NUL, of 1 to %d bytes", filter, maxTopic)
-	}
-	levels := strings.Split(filter, "/")
-	for i, level := range levels {
-		hash := strings.Contains(level, "#") && (level != "#" || i != len(levels)-1)
-		if hash || strings.Contains(level, "+") && level != "+" {
-			return fmt.Errorf("topic filter %q: + stands for one level alone, and # for all that follow, at the end", filter)
-		}
-	}
-	return nil
 }

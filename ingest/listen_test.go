@@ -71,7 +71,7 @@ func TestListenTellsWhyItCannot(t *testing.T) {
 		{denying, nil, "no topic filter"},
 		{denying, []string{"a/#/b"}, `"a/#/b"`},
 		{denying, []string{"a+/b"}, `"a+/b"`},
-		{denying, []string{""}, "must be UTF-8"},
+		{denying, []string{""}, "the topic is empty"},
 		{"http://x", []string{"#"}, "scheme"},
 	} {
 		ctx, cancel := context.WithTimeout(t.Context(), 20*time.Second)

@@ -103,9 +103,6 @@ func (s *series) stamp(kind jsontext.Kind, raw []byte, m *Message) {
 	s.lagNext = (s.lagNext + 1) % mostLags
 }
 
-// heard is how often anything came.
-func (s *series) heard() int { return s.numbers + s.texts + s.nulls + s.others }
-
 // timed tells whether every value was an instant near its arrival.
 func (s *series) timed() bool { return s.stamps > 0 && s.stamps == s.numbers+s.texts }
 

@@ -66,7 +66,7 @@ func TestSurveyTellsWrongUsage(t *testing.T) {
 		{[]string{"--broker", "mqtt://h", "--draft", there}, "is there already"},
 		{[]string{"--broker", "mqtt://h", "--draft", there, "more"}, `unexpected "more"`},
 		{[]string{"--broker", "ftp://h"}, `scheme "ftp"`},
-		{[]string{"--broker", "mqtt://h", "--filter", "a/#/b"}, `topic filter "a/#/b"`},
+		{[]string{"--broker", "mqtt://h", "--filter", "a/#/b"}, `filter "a/#/b"`},
 	} {
 		if status, out, errs := invoke(append([]string{"survey"}, tt.args...)...); status != exitWrong || out != "" || !strings.Contains(errs, tt.want) {
 			t.Errorf("%q: status %d, %q, %q; want %q", tt.args, status, out, errs, tt.want)
