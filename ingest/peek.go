@@ -4,6 +4,8 @@ import (
 	"bytes"
 
 	"github.com/go-json-experiment/json/jsontext"
+
+	"heatreeve/ingest/quality"
 )
 
 // Number reads a number as a [Decoder] reads one that is the whole payload; not ok where
@@ -12,8 +14,8 @@ func Number(text []byte) (x float64, ok bool) {
 	if len(bytes.Trim(text, blanks)) == 0 {
 		return 0, false
 	}
-	x, f := bareNumber(text)
-	return x, f == nil
+	x, mark, f := bareNumber(text)
+	return x, f == nil && mark.Quality() != quality.Bad
 }
 
 // Instant reads a JSON number or string as a [Decoder] reads a stamp of [TimeAny], in
