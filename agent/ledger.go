@@ -79,6 +79,7 @@ func openLedger(s *site.Site, db *store.Store, o Options, now time.Time) (*ledge
 		return nil, fmt.Errorf("resume the accounts: %w", err)
 	}
 	l.committed, l.aged = l.registers(), l.accounts.engine.Through()
+	l.batch.Site = &store.SiteFile{From: l.accounts.engine.Through(), Text: s.Text}
 	l.happened(eventStarted, fmt.Sprintf("heatreeve %s, site file %s", o.Version, shortDigest(s.Digest)))
 	if err := l.first(now); err != nil {
 		return nil, err
@@ -124,7 +125,7 @@ func (l *ledger) makeRoom(now int64) bool {
 	if t == (store.Trimmed{}) {
 		return false
 	}
-	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "damaged", t.Damaged)
+	l.log.Warn("the history is full: the oldest records make room", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "site_files", t.Sites, "damaged", t.Damaged)
 	return true
 }
 
@@ -347,7 +348,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	l.committed, l.booked, l.fault, l.waiting = registers, through, "", 0
 	l.through.Store(through)
 	l.told()
-	l.batch.Beats, l.batch.Minutes = l.batch.Beats[:0], l.batch.Minutes[:0]
+	l.batch.Beats, l.batch.Minutes, l.batch.Site = l.batch.Beats[:0], l.batch.Minutes[:0], nil
 	return nil
 }
 
@@ -387,7 +388,7 @@ func (l *ledger) trim(now int64) error {
 		return err
 	}
 	if t != (store.Trimmed{}) {
-		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "damaged", t.Damaged, "bytes", l.store.Bytes())
+		l.log.Info("history trimmed", "readings", t.Readings, "minutes", t.Minutes, "hours", t.Hours, "events", t.Events, "site_files", t.Sites, "damaged", t.Damaged, "bytes", l.store.Bytes())
 	}
 	return nil
 }

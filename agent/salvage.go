@@ -53,9 +53,9 @@ func salvageLines(r *store.Report) (lines []string) {
 		what string
 		store.Tally
 	}{
-		{"saved: %d batches", r.Batches}, {"saved: %d readings", r.Readings}, {"saved: %d minutes", r.Minutes}, {"saved: %d hours", r.Hours}, {"saved: %d events", r.Events},
+		{"saved: %d batches", r.Batches}, {"saved: %d readings", r.Readings}, {"saved: %d minutes", r.Minutes}, {"saved: %d hours", r.Hours}, {"saved: %d events", r.Events}, {"saved: %d site files", r.Sites},
 		{"lost: %d batches", r.LostBatches}, {"lost: %d readings", r.LostReadings}, {"lost: %d minutes that hours tell of", r.LostMinutes},
-		{"damaged: %d records of minutes", r.DamagedMinutes}, {"damaged: %d records of hours, built anew where there are minutes", r.DamagedHours}, {"damaged: %d events", r.DamagedEvents},
+		{"damaged: %d records of minutes", r.DamagedMinutes}, {"damaged: %d records of hours, built anew where there are minutes", r.DamagedHours}, {"damaged: %d events", r.DamagedEvents}, {"damaged: %d records of site files", r.DamagedSites},
 	} {
 		if part.Count > 0 {
 			lines = append(lines, fmt.Sprintf(part.what, part.Count)+between(part.Tally, newest))

@@ -75,4 +75,7 @@ type Batch struct {
 	Registers  []Register
 	Events     []Event
 	Checkpoint []byte
+	// Site, when not nil, is the site file that is in force from then on. One that is already
+	// is not written again.
+	Site *SiteFile
 }

@@ -83,6 +83,15 @@ func outcome(t *testing.T, path string) error {
 			return err
 		}
 	}
+	sites, err := s.Sites()
+	if err != nil {
+		return err
+	}
+	for _, f := range sites {
+		if _, err := s.SiteText(f.Digest); err != nil {
+			return err
+		}
+	}
 	ids, err := s.Names("tag")
 	if err != nil {
 		return err
@@ -95,6 +104,7 @@ func outcome(t *testing.T, path string) error {
 		t.Errorf("the history ends with %d", n)
 	}
 	testNumbered(t, s, n)
+	testSites(t, s, n)
 	return nil
 }
 

@@ -1,8 +1,9 @@
 // Package store keeps the history of a plant in one bbolt file: the readings
 // as they came, one record a minute and one an hour of each load, the energy
-// registers, what happened beside that, and the engine's own state. Everything that belongs together is committed in one
-// transaction, so that a process killed at any moment finds on its return
-// either all of a batch or nothing of it.
+// registers, what happened beside that, the site files that all this was worked by, and
+// the engine's own state. Everything that belongs together is committed in one transaction,
+// so that a process killed at any moment finds on its return either all of a batch or
+// nothing of it.
 //
 // # Layout, version 2
 //
@@ -33,8 +34,10 @@
 //	           time); 1 byte: 8; CRC
 //	state      "checkpoint" -> 0 or 1 (is there one), uint64 sequence of the last
 //	           record it stands for, the engine's bytes, CRC
+//	           "sites", a bucket, once there is a site file: int64 from -> its SHA-256,
+//	           which it is in force from then on, CRC; SHA-256 -> the text by RFC 1951, CRC
 //
-// names, minutes, hours, events and state also hold an empty bucket named 00: a bucket that holds
+// names, minutes, hours, events, state and sites also hold an empty bucket named 00: a bucket that holds
 // another is never laid into the root's page, whose room the tails need.
 //
 // The sequence of the bucket events is the greatest number that an event has borne.

@@ -2,6 +2,7 @@ package store
 
 import (
 	"bufio"
+	"crypto/sha256"
 	"encoding/binary"
 	"fmt"
 	"math"
@@ -40,6 +41,9 @@ func numbered(n uint64) Batch {
 	if e, ok := eventOf(n); ok {
 		b.Events = []Event{e}
 	}
+	if f, ok := siteOf(n); ok {
+		b.Site = &f
+	}
 	if n%7 == 0 {
 		b.Checkpoint = binary.LittleEndian.AppendUint64(nil, n)
 	}
@@ -54,6 +58,37 @@ func eventOf(n uint64) (e Event, ok bool) {
 		e.Until = int64(n) * second
 	}
 	return e, begun > 0 && (n%11 == 0 || n%11 == 3)
+}
+
+// siteOf is the site file in batch n, of which each thirteenth has one: another from then on
+// in each thirty-ninth, and else the one that is in force already.
+func siteOf(n uint64) (f SiteFile, ok bool) {
+	text := fmt.Appendf(nil, "site: number %d\n", n/39)
+	return SiteFile{From: int64(n) * second, Text: text, Digest: sha256.Sum256(text)}, n%13 == 0
+}
+
+// testSites compares the site files in s with those of the numbers up to n.
+func testSites(t *testing.T, s *Store, n uint64) {
+	t.Helper()
+	all, err := s.Sites()
+	if err != nil {
+		t.Fatal(err)
+	}
+	var want []SiteFile
+	for i := uint64(1); i <= n; i++ {
+		if f, ok := siteOf(i); ok && (i == 13 || i%39 == 0) {
+			want = append(want, f)
+		}
+	}
+	if len(all) != len(want) {
+		t.Fatalf("%d site files after number %d, want %d", len(all), n, len(want))
+	}
+	for i, f := range all {
+		text, err := s.SiteText(f.Digest)
+		if err != nil || f.From != want[i].From || f.Digest != want[i].Digest || string(text) != string(want[i].Text) {
+			t.Errorf("site file %d: %+v, %q, %v; want %+v", i, f, text, err, want[i])
+		}
+	}
 }
 
 // testEvents compares all events in s with those of the numbers 1 to n.
@@ -141,6 +176,7 @@ func TestKill(t *testing.T) {
 		last = n
 		testNumbered(t, s, n)
 		testEvents(t, s, n)
+		testSites(t, s, n)
 		if err := s.Close(); err != nil {
 			t.Fatal(err)
 		}

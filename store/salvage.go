@@ -1,6 +1,7 @@
 package store
 
 import (
+	"crypto/sha256"
 	"encoding/binary"
 	"errors"
 	"fmt"
@@ -38,10 +39,11 @@ type Report struct {
 	// Readings that are lost are counted where the name of their group or block is left.
 	Readings, LostReadings Tally
 	Minutes, Hours, Events Tally
+	Sites                  Tally // since when which site file was in force; a text may be lost nevertheless
 	// LostMinutes are those that hours hold and that are not there, DamagedMinutes and
-	// DamagedHours the keys (up to eight loads each) whose records cannot be read, and
-	// DamagedEvents those of events.
-	LostMinutes, DamagedMinutes, DamagedHours, DamagedEvents Tally
+	// DamagedHours the keys (up to eight loads each) whose records cannot be read,
+	// DamagedEvents those of events, and DamagedSites those of site files and their texts.
+	LostMinutes, DamagedMinutes, DamagedHours, DamagedEvents, DamagedSites Tally
 	// Names, Registers and State tell whether these are saved. Without State the accounts
 	// go on from Registers, and the readings that came after its checkpoint count no more.
 	Names, Registers, State bool
@@ -51,7 +53,7 @@ type Report struct {
 
 // Whole tells whether nothing was lost.
 func (r *Report) Whole() bool {
-	return r.LostBatches.Count+r.LostReadings.Count+r.LostMinutes.Count+r.DamagedMinutes.Count+r.DamagedHours.Count+r.DamagedEvents.Count+r.Unreadable == 0 &&
+	return r.LostBatches.Count+r.LostReadings.Count+r.LostMinutes.Count+r.DamagedMinutes.Count+r.DamagedHours.Count+r.DamagedEvents.Count+r.DamagedSites.Count+r.Unreadable == 0 &&
 		r.Names && r.Registers && r.State
 }
 
@@ -116,7 +118,7 @@ type salvage struct {
 	trees   []*salvagedTree        // of the newest state and the one before
 	groups  [5]map[string][][]byte // by name: of the newest state, the one before, and of neither, see stray
 	unsure  bool                   // groups of the newest state may be missing without a trace
-	damaged map[string]bool        // keys of minutes, hours and events that were met damaged; in front m, h or e
+	damaged map[string]bool        // keys of minutes, hours, events and site files that were met damaged; in front m, h, e or s
 	names   []byte                 // of no known bucket
 	batch   []keyed
 	bytes   int
@@ -182,6 +184,18 @@ func (z *salvage) tree(root uint64) (err error) {
 				}
 			case "journal", "sealed":
 				z.group(len(z.trees)-1, e)
+			case "state":
+				if e.bucket && string(e.key) == string(bucketSites) {
+					before := w.bad
+					w.bucket(e.value, func(e element) {
+						if !e.bucket {
+							keep(z.keyed("sites", e))
+						}
+					})
+					ofRecords -= w.bad - before
+					return
+				}
+				t.values[name+"/"+string(e.key)] = e.value
 			case "recent":
 				if len(e.key) == 8 {
 					t.recent = append(t.recent, e.value)
@@ -253,7 +267,7 @@ func (z *salvage) strayNames(e element) {
 	}
 }
 
-// stray takes a minute, an hour or an event whose bucket is not known. One that might be a
+// stray takes a minute, an hour, an event or a site file whose bucket is not known. One that might be a
 // minute or an hour is left.
 func (z *salvage) stray(e element) error {
 	_, notMinute := parseMinutes(nil, e.key, e.value, anyLoad)
@@ -267,6 +281,9 @@ func (z *salvage) stray(e element) error {
 	if _, err := parseEvent(e.key, e.value); err == nil {
 		return z.keyed("events", e)
 	}
+	if readSite(e) == nil {
+		return z.keyed("sites", e)
+	}
 	return nil
 }
 
@@ -278,7 +295,17 @@ func (z *salvage) group(whence int, e element) {
 	}
 }
 
-// keyed takes the minutes, hours or event under a key, if they can be read.
+// readSite is nil of a site file's beginning or text that can be read.
+func readSite(e element) (err error) {
+	if isSiteTime(e.key) {
+		_, err = parseSiteTime(e.key, e.value)
+		return err
+	}
+	_, err = parseText(e.key, e.value)
+	return err
+}
+
+// keyed takes the minutes, hours, event or site file under a key, if they can be read.
 func (z *salvage) keyed(bucket string, e element) (err error) {
 	keyBytes := 12
 	switch bucket {
@@ -286,6 +313,11 @@ func (z *salvage) keyed(bucket string, e element) (err error) {
 		_, err = parseMinutes(nil, e.key, e.value, anyLoad)
 	case "hours":
 		_, err = parseHours(nil, e.key, e.value, anyLoad)
+	case "sites":
+		err = readSite(e)
+		if keyBytes = sha256.Size; isSiteTime(e.key) {
+			keyBytes = 8
+		}
 	default:
 		keyBytes = 16
 		_, err = parseEvent(e.key, e.value)
@@ -307,9 +339,14 @@ func (z *salvage) keyed(bucket string, e element) (err error) {
 func (z *salvage) flush() error {
 	batch := z.batch
 	z.batch, z.bytes = nil, 0
-	return z.db.Update(func(tx *bolt.Tx) error {
+	return z.db.Update(func(tx *bolt.Tx) (err error) {
 		for _, k := range batch {
 			b := tx.Bucket(k.bucket)
+			if b == nil {
+				if b, err = makeSites(tx); err != nil {
+					return err
+				}
+			}
 			b.FillPercent = appendFill
 			if b.Get(k.key) != nil {
 				continue
@@ -349,8 +386,11 @@ func (z *salvage) hours() error {
 func (z *salvage) count() error {
 	r := z.report
 	for key := range z.damaged {
-		lost := map[byte]*Tally{'m': &r.DamagedMinutes, 'h': &r.DamagedHours, 'e': &r.DamagedEvents}[key[0]]
+		lost := map[byte]*Tally{'m': &r.DamagedMinutes, 'h': &r.DamagedHours, 'e': &r.DamagedEvents, 's': &r.DamagedSites}[key[0]]
 		at := keyTime([]byte(key[1:]))
+		if key[0] == 's' && !isSiteTime([]byte(key[1:])) {
+			at = 0 // a text has no time
+		}
 		lost.add(1, at, at)
 	}
 	return z.db.Update(func(tx *bolt.Tx) error {
@@ -370,6 +410,9 @@ func (z *salvage) count() error {
 		}
 		if err := z.countEvents(tx); err != nil {
 			return err
+		}
+		for _, f := range siteTimes(sites(tx), func([]byte, error) {}) {
+			r.Sites.add(1, f.From, f.From)
 		}
 		mark := z.hourMark(tx)
 		taken := int64(math.MinInt64)

@@ -2,6 +2,7 @@ package store
 
 import (
 	"bytes"
+	"errors"
 	"flag"
 	"fmt"
 	"math"
@@ -87,6 +88,17 @@ func compareNumbered(t *testing.T, s *Store, r Report) {
 			t.Fatalf("%+v, %v", h, err)
 		}
 		hours++
+	}
+	sites, err := s.Sites()
+	if err != nil || int64(len(sites)) != r.Sites.Count {
+		t.Fatalf("%d site files, %v: %+v", len(sites), err, r)
+	}
+	for _, f := range sites {
+		want, ok := siteOf(uint64(f.From / second))
+		text, err := s.SiteText(f.Digest)
+		if !ok || f.Digest != want.Digest || err == nil && string(text) != string(want.Text) || err != nil && !errors.Is(err, errMissing) {
+			t.Fatalf("%+v: %q, %v", f, text, err)
+		}
 	}
 	if readings != r.Readings.Count || minutes != r.Minutes.Count {
 		t.Fatalf("%d readings and %d minutes are there: %+v", readings, minutes, r)

@@ -25,6 +25,7 @@ var (
 	bucketEvents    = []byte("events")
 	bucketRegisters = []byte("registers")
 	bucketState     = []byte("state")
+	bucketSites     = []byte("sites") // in that of the state
 
 	keyVersion    = []byte("version")
 	keyCreated    = []byte("created")
@@ -148,6 +149,11 @@ func (s *Store) write(tx *bolt.Tx, b Batch, open *openGroup) error {
 	if len(b.Events) > 0 {
 		if err := putEvents(tx, b.Events); err != nil {
 			return fmt.Errorf("events: %w", err)
+		}
+	}
+	if b.Site != nil {
+		if err := s.putSite(tx, *b.Site); err != nil {
+			return fmt.Errorf("site file: %w", err)
 		}
 	}
 	if b.Checkpoint != nil {

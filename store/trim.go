@@ -31,14 +31,15 @@ const (
 )
 
 // Trimmed says what retention has removed. Damaged counts the groups and the keys
-// of minutes, hours and events that could not be read, so that it is not known what was in
+// of minutes, hours, events and site files that could not be read, so that it is not known what was in
 // them.
-type Trimmed struct{ Readings, Minutes, Hours, Events, Damaged int64 }
+type Trimmed struct{ Readings, Minutes, Hours, Events, Sites, Damaged int64 }
 
 // Trim removes readings and minutes older than MaxAge and hours and events older than
 // MaxHourAge before now (event time, Unix nanoseconds), and, while more than MaxBytes
 // are in use, the oldest readings, after those the oldest minutes, then the oldest events,
-// and last the oldest hours. Of more than 100,000 events the oldest go. An event that lasts is
+// then the oldest hours, and last the site files that are no longer in force, which go by age as
+// hours do. Of more than 100,000 events the oldest go. An event that lasts is
 // as old as its beginning. Beats after the last checkpoint are never removed, for a restart
 // needs them, nor the minutes of the newest hour, nor any register. Readings go a
 // group or block at a time and the last of these stays: 48 KiB of them, or a
@@ -60,7 +61,7 @@ func (s *Store) Trim(now int64) (Trimmed, error) {
 	for _, of := range []struct {
 		remove remover
 		age    time.Duration
-	}{{s.trimGroups, s.maxAge}, {s.trimMinutes, s.maxAge}, {s.trimEvents, s.maxHourAge}, {s.trimHours, s.maxHourAge}} {
+	}{{s.trimGroups, s.maxAge}, {s.trimMinutes, s.maxAge}, {s.trimEvents, s.maxHourAge}, {s.trimHours, s.maxHourAge}, {s.trimSites, s.maxHourAge}} {
 		old := int64(math.MinInt64)
 		if of.age > 0 {
 			old = now - int64(of.age)

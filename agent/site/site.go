@@ -25,7 +25,8 @@ import (
 
 // Site is a checked site file.
 type Site struct {
-	Digest    [32]byte // SHA-256 of the file's text
+	Text      []byte   // of the file; [Parse] makes the same of it again
+	Digest    [32]byte // SHA-256 of Text
 	Name      string
 	Zone      *time.Location // of days and months in reports
 	Barometer float64        // Pa; 0 when the file gives none, and then it has no gauge pressure
