@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"crypto/tls"
 	"fmt"
 
 	"github.com/coreos/go-systemd/v22/daemon"
@@ -13,6 +14,10 @@ import (
 func newSession(s *site.Site, o Options) (*ingest.Session, error) {
 	options := connectionOf(s.Broker)
 	options.Ahead, options.Log, options.Now = s.Timing.Ahead, o.Log, o.Now
+	options.Subscribe = s.Broker.Subscribe
+	if s.Broker.Availability != "" {
+		options.Presence = ingest.Words(s.Broker.Availability, site.Online, site.Offline)
+	}
 	session, err := ingest.New(signalsOf(s), options)
 	if err != nil {
 		return nil, fmt.Errorf("broker session: %w", err)
@@ -25,6 +30,9 @@ func connectionOf(b site.Broker) ingest.Options {
 	o := ingest.Options{
 		URL: b.URL, ClientID: b.ClientID, Username: b.Username,
 		CAFile: b.CAFile, CertFile: b.CertFile, KeyFile: b.KeyFile, ServerName: b.ServerName,
+	}
+	if b.MinTLS == "1.3" {
+		o.MinTLS = tls.VersionTLS13
 	}
 	if b.PasswordFile != "" || b.PasswordEnv != "" {
 		o.Password = b.Password

@@ -36,7 +36,7 @@ func (r *reader) reports(o object, t *Tag) {
 // index among those. A topic that several tags name is told once.
 func (r *reader) alive(v value, t *Tag) int {
 	before := len(v.faults)
-	l := told{Tag: Tag{Scale: 1, Max: 1, QoS: 1, MaxAge: untilTold, Liveness: new(Liveness)}, at: v}
+	l := told{Tag: Tag{Broker: t.Broker, Scale: 1, Max: 1, QoS: 1, MaxAge: untilTold, Liveness: new(Liveness)}, at: v}
 	o := v.object("tags.*.alive")
 	if v, ok := o.need("topic", "the MQTT topic by which the source shows that it is alive"); ok {
 		l.Topic, l.at = topic(v), v
@@ -49,7 +49,7 @@ func (r *reader) alive(v value, t *Tag) int {
 		return 0
 	}
 	for i, other := range r.told {
-		if other.Topic != l.Topic {
+		if other.Topic != l.Topic || other.Broker != l.Broker {
 			continue
 		}
 		if !other.same(&l.Tag) {
@@ -57,7 +57,7 @@ func (r *reader) alive(v value, t *Tag) int {
 		}
 		return i
 	}
-	l.name()
+	l.name(r.site.AllBrokers()[l.Broker].Name)
 	r.told = append(r.told, l)
 	return len(r.told) - 1
 }
@@ -99,10 +99,14 @@ func (l *told) same(other *Tag) bool {
 	return *l.Liveness == *other.Liveness && l.MaxAge == other.MaxAge && l.Value == other.Value && l.Time == other.Time && l.TimeFormat == other.TimeFormat
 }
 
-// name gives the tag of the topic its name, which is that of the topic.
-func (l *told) name() {
+// name gives the tag of the topic its name, which is that of the topic, and of the
+// broker where it is not the main one.
+func (l *told) name(broker string) {
 	l.Name = l.Topic
-	if len(l.Topic) > maxLabel {
+	if broker != "" {
+		l.Name += " (" + broker + ")"
+	}
+	if len(l.Name) > maxLabel {
 		l.at.fault("the topic is %d bytes long; its source is shown under its name, of at most %d", len(l.Topic), maxLabel)
 		return
 	}
@@ -111,7 +115,7 @@ func (l *told) name() {
 
 // appendLiveness puts the tags of those topics behind the declared ones; sources are the
 // topics and values that these read.
-func (r *reader) appendLiveness(sources map[[2]string]string) {
+func (r *reader) appendLiveness(sources map[origin]string) {
 	declared := len(r.site.Tags)
 	for i := range r.site.Tags {
 		if t := &r.site.Tags[i]; t.OnChange {
@@ -122,7 +126,7 @@ func (r *reader) appendLiveness(sources map[[2]string]string) {
 		if _, clash := r.tags[l.Name]; clash {
 			l.at.fault("%q is the name of a tag too, and the liveness of the topic is shown under it; rename the tag", l.Name)
 		}
-		if other, clash := sources[[2]string{l.Topic, l.Value}]; clash && l.Liveness.Online != "" {
+		if other, clash := sources[origin{l.Broker, l.Topic, l.Value}]; clash && l.Liveness.Online != "" {
 			l.at.fault("tag %q reads a number where %s", other, l.says())
 		}
 		r.site.Tags = append(r.site.Tags, l.Tag)

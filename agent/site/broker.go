@@ -17,14 +17,28 @@ import (
 // Broker is where the tags come from. It holds no secret: [Broker.Password]
 // fetches the password when it is needed.
 type Broker struct {
-	URL                       string // "mqtt://host:port", or "mqtts://host:port" for TLS
+	Name                      string // "" of the main one
+	URL                       string // "mqtt://host:port", "mqtts://host:port" with TLS, or "ws://host:port/path" and "wss://host:port/path"
 	TLS                       bool
 	ClientID                  string // fixed, so that the broker keeps the session; default "heatreeve-" and the site's name
 	CAFile, CertFile, KeyFile string // PEM; relative paths are taken from the site file's directory
 	ServerName                string // name in the broker's certificate, where it is not the host
+	MinTLS                    string // "1.2" or "1.3"; "" for 1.2
 	Username                  string
-	PasswordFile, PasswordEnv string // at most one of them
+	PasswordFile, PasswordEnv string   // at most one of them
+	Subscribe                 []string // filters that end in #, in place of the topics that they cover; they do not overlap
+	Availability              string   // topic on which the agent shows whether it is connected; "" for none
+	Queue                     int      // messages that the broker keeps for a client that takes none; default 1000
 }
+
+// Words of [Broker.Availability].
+const (
+	Online  = "online"
+	Offline = "offline"
+)
+
+// defaultQueue is that of mosquitto (max_queued_messages).
+const defaultQueue = 1000
 
 // Password returns the password from the file, without line ends behind it, or
 // from the environment variable, and "" when the site names neither. An error
@@ -47,9 +61,10 @@ func (b Broker) Password() (string, error) {
 	return "", nil
 }
 
-func (r *reader) broker(v value) Broker {
+// broker reads one; name is "" of the main one.
+func (r *reader) broker(v value, name string) Broker {
 	o := v.object("broker")
-	b := Broker{ClientID: clientID(r.site.Name)}
+	b := Broker{Name: name, ClientID: clientID(strings.TrimSpace(r.site.Name + " " + name)), Queue: defaultQueue}
 	if u, ok := o.need("url", "such as mqtt://127.0.0.1:1883 or mqtts://broker.example:8883"); ok {
 		b.URL, b.TLS = brokerURL(u)
 	}
@@ -61,15 +76,23 @@ func (r *reader) broker(v value) Broker {
 	r.setPath(o, "key", &b.KeyFile)
 	r.setPath(o, "password_file", &b.PasswordFile)
 	o.setVariable("password_env", &b.PasswordEnv)
+	o.setVersion("min_tls", &b.MinTLS)
+	o.setCount("queue", &b.Queue, 100, 10_000_000)
+	if v, ok := o.get("availability"); ok {
+		b.Availability = topic(v)
+	}
+	if v, ok := o.get("subscribe"); ok {
+		b.Subscribe = filters(v)
+	}
 	o.checkBroker(b)
 	return b
 }
 
 // checkBroker looks at which keys stand beside which.
 func (o object) checkBroker(b Broker) {
-	for _, key := range []string{"ca", "certificate", "key", "server_name"} {
+	for _, key := range []string{"ca", "certificate", "key", "server_name", "min_tls"} {
 		if v, ok := o.get(key); ok && b.URL != "" && !b.TLS {
-			v.fault("is for TLS, and the url begins with mqtt://; write mqtts:// or leave it out")
+			v.fault("is for TLS, and the url begins with %s://; write %[1]ss:// or leave it out", scheme(b.URL))
 		}
 	}
 	o.needs("certificate", "key")
@@ -91,6 +114,17 @@ func (o object) needs(key, other string) {
 	}
 }
 
+// schemes are those of a broker's address, with the port that IANA registered.
+var schemes = map[string]struct {
+	port        string
+	tls, socket bool // encrypted; MQTT in a websocket, which has a path
+}{
+	"mqtt": {port: "1883"}, "mqtts": {port: "8883", tls: true},
+	"ws": {port: "80", socket: true}, "wss": {port: "443", tls: true, socket: true},
+}
+
+func scheme(address string) string { s, _, _ := strings.Cut(address, "://"); return s }
+
 // brokerURL checks the address. Faults do not quote it, for it may hold a
 // password.
 func brokerURL(v value) (address string, tls bool) {
@@ -102,34 +136,36 @@ func brokerURL(v value) (address string, tls bool) {
 		v.fault("must carry no user or password; use username with password_file or password_env")
 		return "", false
 	}
+	const forms = "mqtt://host:port, or mqtts://host:port for TLS; in a websocket ws://host:port/path or wss://host:port/path"
 	u, err := url.Parse(s)
+	known, ok := schemes[scheme(s)]
 	switch {
-	case err != nil || u.Host == "" || !(strings.HasPrefix(s, "mqtt://") || strings.HasPrefix(s, "mqtts://")):
-		v.fault("%q is no address of a broker; allowed: mqtt://host:port, or mqtts://host:port for TLS", clip(s))
+	case err != nil || u.Host == "" || !ok:
+		v.fault("%q is no address of a broker; allowed: %s", clip(s), forms)
 		return "", false
-	case (u.Path != "" && u.Path != "/") || u.RawQuery != "" || u.Fragment != "":
-		v.fault("%q goes on behind host and port; allowed: mqtt://host:port or mqtts://host:port", clip(s))
+	case !known.socket && u.Path != "" && u.Path != "/" || u.RawQuery != "" || u.Fragment != "":
+		v.fault("%q goes on behind host and port; allowed: %s", clip(s), forms)
 		return "", false
 	}
-	host, port, err := hostPort(u)
+	host, port, err := hostPort(u, known.port)
 	if err != nil {
 		v.fault("%q: %v", clip(s), err)
 		return "", false
 	}
-	return u.Scheme + "://" + net.JoinHostPort(host, port), u.Scheme == "mqtts"
+	address = u.Scheme + "://" + net.JoinHostPort(host, port)
+	if known.socket {
+		address += u.EscapedPath()
+	}
+	return address, known.tls
 }
 
-// hostPort fills in the port that IANA registered for MQTT.
-func hostPort(u *url.URL) (host, port string, err error) {
+func hostPort(u *url.URL, usual string) (host, port string, err error) {
 	host, port = u.Hostname(), u.Port()
 	if host == "" || strings.ContainsFunc(host, unicode.IsSpace) {
 		return "", "", errors.New("the host is missing or has a space")
 	}
 	if port == "" {
-		port = "1883"
-		if u.Scheme == "mqtts" {
-			port = "8883"
-		}
+		port = usual
 	}
 	if n, err := strconv.Atoi(port); err != nil || n < 1 || n > 65535 {
 		return "", "", errors.New("the port is no number from 1 to 65535")

@@ -4,11 +4,13 @@ import "slices"
 
 // keys are the keys of each block. A star stands for a name that the file gives.
 var keys = map[string][]string{
-	"":        {"site", "timezone", "barometer", "broker", "fluids", "tags", "loads", "timing", "history"},
-	"broker":  {"url", "client_id", "ca", "certificate", "key", "server_name", "username", "password_file", "password_env"},
+	"": {"site", "timezone", "barometer", "broker", "brokers", "fluids", "tags", "loads", "timing", "history", "publish"},
+	"broker": {"url", "client_id", "ca", "certificate", "key", "server_name", "min_tls", "username", "password_file", "password_env",
+		"subscribe", "availability", "queue"},
+	"publish": {"topic", "every", "broker"},
 	"timing":  {"grid", "lateness", "ahead", "commit", "bridge"},
 	"history": {"keep", "size"},
-	"tags.*": {"topic", "unit", "value", "time", "time_unit", "accuracy", "max_age", "range",
+	"tags.*": {"topic", "unit", "value", "time", "time_unit", "accuracy", "max_age", "range", "broker",
 		"resolution", "deadband", "reports", "alive", "counts"},
 	"tags.*.alive":  {"topic", "within", "online", "offline", "value", "time", "time_unit"},
 	"tags.*.counts": {"rolls_over_at", "largest", "pulse"},
@@ -37,10 +39,11 @@ var described = []string{"source", "phase", "uncertainty", "pressure", "max_pres
 // "tags.*", "loads.*.stream" and so on, "" for the top. A star stands for a name
 // that the file gives.
 func Keys() map[string][]string {
-	all := make(map[string][]string, len(keys)+3)
+	all := make(map[string][]string, len(keys)+4)
 	for block, names := range keys {
 		all[block] = slices.Clone(names)
 	}
+	all["brokers.*"] = slices.Clone(keys["broker"])
 	all["fluids.*"] = fluidKeys()
 	all["fluids.*.gas"], all["fluids.*.flue gas.fuel"] = species(), species()
 	return all

@@ -11,12 +11,13 @@ import (
 // reader builds a Site. What it has read of the tags and fluids, right or wrong,
 // it remembers, so that one fault does not draw others after it.
 type reader struct {
-	site   *Site
-	file   string
-	tags   map[string]int          // declared names to the index in site.Tags
-	told   []told                  // topics that tell whether sources are alive
-	fluids map[string]thermo.Fluid // nil where the declaration is at fault
-	gauge  bool                    // the file has a gauge pressure
+	site     *Site
+	file     string
+	tags     map[string]int          // declared names to the index in site.Tags
+	told     []told                  // topics that tell whether sources are alive
+	brokerAt []value                 // where each of the brokers stands in the file
+	fluids   map[string]thermo.Fluid // nil where the declaration is at fault
+	gauge    bool                    // the file has a gauge pressure
 }
 
 func (r *reader) read(v value) {
@@ -28,14 +29,14 @@ func (r *reader) read(v value) {
 		r.site.Zone = zone(t)
 	}
 	r.barometer(o)
-	if t, ok := o.need("broker", "such as broker: {url: mqtt://127.0.0.1:1883}"); ok {
-		r.site.Broker = r.broker(t)
-	}
+	r.brokers(o)
 	r.timing(o)
 	r.history(o)
 	r.readFluids(o)
 	r.readTags(o)
 	r.readLoads(o)
+	r.checkTopics()
+	r.publish(o)
 	if r.gauge {
 		o.need("barometer", "the air pressure at the plant, such as 101.3 kPa: the file has gauge pressures")
 	}

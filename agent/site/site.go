@@ -28,14 +28,16 @@ type Site struct {
 	Text      []byte   // of the file; [Parse] makes the same of it again
 	Digest    [32]byte // SHA-256 of Text
 	Name      string
-	Zone      *time.Location // of days and months in reports
-	Barometer float64        // Pa; 0 when the file gives none, and then it has no gauge pressure
-	Broker    Broker
+	Zone      *time.Location          // of days and months in reports
+	Barometer float64                 // Pa; 0 when the file gives none, and then it has no gauge pressure
+	Broker    Broker                  // the main one
+	Brokers   []Broker                // beside it, in file order
 	Fluids    map[string]thermo.Fluid // the declared ones
 	Tags      []Tag                   // in file order, and behind them those of [Liveness]
 	Loads     []HeatLoad              // in file order
 	Timing    Timing
 	History   History
+	Publish   Publish
 }
 
 // Declared is how many of the tags the file declares; those behind them tell whether a
@@ -52,6 +54,7 @@ func (s *Site) Declared() int {
 // Tag is one signal on the broker.
 type Tag struct {
 	Name, Topic string
+	Broker      int // index into [Site.AllBrokers]
 	Unit        unit.Unit
 	// Scale and Offset turn a number from the payload into SI: Scale·x + Offset.
 	// For a gauge pressure Offset is the barometer, and the result is absolute.

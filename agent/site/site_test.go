@@ -6,6 +6,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"reflect"
 	"regexp"
 	"strings"
 	"testing"
@@ -45,8 +46,8 @@ func TestParse(t *testing.T) {
 	if s.Name != "Saltmarsh Laundry" || s.Zone.String() != "Europe/Dublin" || s.Barometer != 100e3 {
 		t.Errorf("top: %q, %v, %v Pa", s.Name, s.Zone, s.Barometer)
 	}
-	want := Broker{URL: "mqtt://127.0.0.1:1883", ClientID: "heatreeve-saltmarsh-laundry"}
-	if s.Broker != want {
+	want := Broker{URL: "mqtt://127.0.0.1:1883", ClientID: "heatreeve-saltmarsh-laundry", Queue: 1000}
+	if !reflect.DeepEqual(s.Broker, want) {
 		t.Errorf("broker = %+v, want %+v", s.Broker, want)
 	}
 	if s.Timing != (Timing{time.Second, 5 * time.Second, 30 * time.Second, 10 * time.Second, time.Second, 0}) {

@@ -25,7 +25,7 @@ func (r *reader) readTags(o object) {
 		v.emptyMapping("at least one tag")
 	}
 	r.tags = make(map[string]int, len(es))
-	sources := make(map[[2]string]string, len(es)) // topic and value
+	sources := make(map[origin]string, len(es))
 	for _, e := range es {
 		if e.key.label(e.name) {
 			e.key.noQuantity(e.name)
@@ -33,7 +33,7 @@ func (r *reader) readTags(o object) {
 		t := r.tag(e)
 		r.tags[e.name] = len(r.site.Tags)
 		r.site.Tags = append(r.site.Tags, t)
-		source := [2]string{t.Topic, t.Value}
+		source := origin{t.Broker, t.Topic, t.Value}
 		if other, twice := sources[source]; twice && t.Topic != "" {
 			e.fault("reads the same value of the same topic as tag %q", other)
 			continue
@@ -41,6 +41,12 @@ func (r *reader) readTags(o object) {
 		sources[source] = e.name
 	}
 	r.appendLiveness(sources)
+}
+
+// origin is where a number comes from: a broker, a topic, and a place in the payload.
+type origin struct {
+	broker       int
+	topic, value string
 }
 
 // noQuantity refuses a tag's name that a load would read as a constant.
@@ -56,6 +62,7 @@ func (r *reader) tag(e entry) Tag {
 	if v, ok := o.need("topic", "the MQTT topic of the tag"); ok {
 		t.Topic = topic(v)
 	}
+	t.Broker = r.chosenBroker(o)
 	u, ok := o.need("unit", "the unit of the numbers in the payload, such as °C, m3/h, barg")
 	known := ok && r.tagUnit(u, &t)
 	if v, ok := o.get("counts"); ok {
