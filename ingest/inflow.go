@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"sync/atomic"
 )
 
 // maxPacket is the longest body of an inbound packet: topic with its length,
@@ -16,11 +17,15 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 // may announce 256 MiB, so that it is delivered with a payload too large and can be
 // refused and acknowledged; otherwise it would come again at every reconnection.
 // The first packet is passed on whatever it is: the library judges it.
+//
+// The library probes a connection on which it sees nothing, and would take one on which
+// the answer comes behind many messages for dead. So a message answers the probe too.
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
-	message delivery // at hand
-	begun   bool     // the first packet has come
+	message delivery    // at hand
+	begun   bool        // the first packet has come
+	probed  atomic.Bool // the library waits for an answer
 	room    [5]byte
 	head    []byte // of the packet, yet to be passed on
 	body    int    // bytes to pass on after it
@@ -42,7 +47,11 @@ func (f *inflow) Read(p []byte) (int, error) {
 	return n, err
 }
 
-const publish = 3 // packet type: MQTT 3.1.1, table 2.1
+const ( // packet types: MQTT 3.1.1, table 2.1
+	publish  = 3
+	pingreq  = 12
+	pingresp = 13
+)
 
 // next takes a message, or the fixed header of another packet.
 func (f *inflow) next() error {
@@ -77,10 +86,14 @@ func (f *inflow) take(first byte, length int) error {
 	if err == nil {
 		err = f.message.parse(first, body)
 	}
-	if err == nil {
-		f.deliver(&f.message)
-		_, err = f.r.Discard(rest)
+	if err != nil {
+		return cutShort(err)
 	}
+	f.deliver(&f.message)
+	if f.probed.Swap(false) {
+		f.head = append(f.room[:0], pingresp<<4, 0)
+	}
+	_, err = f.r.Discard(rest)
 	return cutShort(err)
 }
 

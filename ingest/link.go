@@ -53,6 +53,9 @@ func (l *link) Write(p []byte) (int, error) {
 	if err := l.SetWriteDeadline(time.Now().Add(l.timeout)); err != nil {
 		return 0, err
 	}
+	if len(p) > 0 && p[0]>>4 == pingreq {
+		l.in.probed.Store(true)
+	}
 	n, err := l.Conn.Write(p)
 	if err != nil {
 		l.failed.CompareAndSwap(nil, &err)

@@ -191,6 +191,29 @@ func TestSilentLinkIsFound(t *testing.T) {
 	eventually(t, "loss and reconnection", func() bool { st := s.Stats(); return st.Losses > 0 && st.Connections > 1 })
 }
 
+// A broker that is busy sending has its answer to a probe behind all that; what it sends
+// shows that it is there. The library sends no second probe before an answer to the first.
+func TestMessagesAnswerProbes(t *testing.T) {
+	var probes atomic.Int32
+	url := stub(t, func(p packets.ControlPacket) packets.ControlPacket {
+		switch p := p.(type) {
+		case *packets.ConnectPacket:
+			return connack(packets.Accepted)
+		case *packets.SubscribePacket:
+			return suback(p, 1)
+		case *packets.PingreqPacket:
+			probes.Add(1)
+			return message311("plant/a", []byte("5"))
+		}
+		return nil
+	})
+	s, _, _ := start(t, []Tag{number("a")}, Options{URL: url, KeepAlive: time.Second, PingTimeout: 100 * time.Millisecond})
+	eventually(t, "a third probe", func() bool { return probes.Load() > 2 })
+	if st := s.Stats(); st.Losses != 0 || st.Tags[0].Accepted < 2 {
+		t.Errorf("stats %+v; want no loss", st)
+	}
+}
+
 func TestRepeatedLossesAreExplained(t *testing.T) {
 	url := stub(t, func(p packets.ControlPacket) packets.ControlPacket {
 		if _, ok := p.(*packets.ConnectPacket); ok {
