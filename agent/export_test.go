@@ -204,7 +204,7 @@ func TestExportOfMinutes(t *testing.T) {
 // Every figure of a minute has its column, and one that there is none of is empty.
 func TestMinuteRow(t *testing.T) {
 	m := store.Minute{
-		Start: week.UnixNano(), Measured: 40, Bridged: 15, Missing: 5, Given: 1, Taken: 2, BridgedGiven: 3, BridgedTaken: 4, Latent: 6,
+		Start: week.UnixNano(), Measured: 40, Bridged: 15, Missing: 5, Given: 1, Taken: 2, BridgedGiven: 3, BridgedTaken: 4, Latent: 6, Uncertain: 33,
 		Duty: 7, DutyMin: -8, DutyMax: 9, DutyUncertainty: 10, Content: 338.15, Random: 11, Witness: 12, Compared: 13,
 	}
 	for p := range loads.Parts {
@@ -225,7 +225,7 @@ func TestMinuteRow(t *testing.T) {
 	}
 	for name, want := range map[string]any{
 		"start": "2026-10-23T23:00:00Z", "measured_s": 40., "bridged_s": 15., "missing_s": 5., "given_J": 1., "taken_J": 2., "bridged_given_J": 3., "bridged_taken_J": 4.,
-		"latent_s": 6., "duty_W": 7., "lowest_duty_W": -8., "highest_duty_W": 9., "duty_uncertainty_W": 10., "mass_flow_kg_per_s": 0., "inlet_K": nil, "pressure_Pa": nil,
+		"latent_s": 6., "uncertain_s": 33., "duty_W": 7., "lowest_duty_W": -8., "highest_duty_W": 9., "duty_uncertainty_W": 10., "mass_flow_kg_per_s": 0., "inlet_K": nil, "pressure_Pa": nil,
 		"content_K": 338.15, "random_variance_J2": 11., "witness_counted_J": 12., "witness_served_J": 13.,
 		"systematic_flow_J": -100., "systematic_heat_capacity_J": -100 - float64(loads.PartCp), "systematic_density_J": -100 - float64(loads.PartDensity),
 	} {

@@ -193,6 +193,7 @@ func (l *ledger) take(known map[int]store.Register) {
 		l.accounts.engine.SetRegisters(i, loads.Totals{
 			Given: r.Given, Taken: r.Taken, BridgedGiven: r.BridgedGiven, BridgedTaken: r.BridgedTaken,
 			Measured: nanoseconds(r.Measured), Bridged: nanoseconds(r.Bridged), Missing: nanoseconds(r.Missing),
+			Uncertain: nanoseconds(r.Uncertain),
 		})
 	}
 }
@@ -284,8 +285,8 @@ func (l *ledger) minute(m loads.Minute) store.Minute {
 		Load: l.loadIDs[m.Load], Start: m.Start,
 		Measured: seconds(m.Measured), Bridged: seconds(m.Bridged), Missing: seconds(m.Missing),
 		Given: m.Given, Taken: m.Taken, BridgedGiven: m.BridgedGiven, BridgedTaken: m.BridgedTaken,
-		Latent: seconds(m.Latent),
-		Duty:   m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
+		Latent: seconds(m.Latent), Uncertain: seconds(m.Uncertain),
+		Duty: m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
 		Flow: m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure, Content: m.Content,
 		Random: m.Random, Witness: m.Witness, Compared: m.Compared,
 	}
@@ -357,6 +358,7 @@ func (l *ledger) writeRegisters(registers []loads.Totals) {
 		l.batch.Registers = append(l.batch.Registers, store.Register{
 			Load: l.loadIDs[i], Given: r.Given, Taken: r.Taken, BridgedGiven: r.BridgedGiven, BridgedTaken: r.BridgedTaken,
 			Measured: seconds(r.Measured), Bridged: seconds(r.Bridged), Missing: seconds(r.Missing),
+			Uncertain: seconds(r.Uncertain),
 		})
 	}
 }

@@ -151,7 +151,7 @@ func minuteRecord(m store.Minute) account.Record {
 	return account.Record{
 		Start: m.Start, End: m.Start + minute, Lowest: m.DutyMin, Highest: m.DutyMax,
 		Amounts: account.Amounts{
-			Measured: shortSpan(m.Measured), Bridged: shortSpan(m.Bridged), Latent: shortSpan(m.Latent),
+			Measured: shortSpan(m.Measured), Bridged: shortSpan(m.Bridged), Latent: shortSpan(m.Latent), Uncertain: shortSpan(m.Uncertain),
 			Given: m.Given, Taken: m.Taken, BridgedGiven: m.BridgedGiven, BridgedTaken: m.BridgedTaken,
 			Served:      served(m.Given, m.Taken, m.Duty),
 			Uncertainty: uncertainty(&m.Systematic, m.Random, untold(&m)),
@@ -166,7 +166,7 @@ func (r *records) hourRecord(h store.Hour) account.Record {
 	x := account.Record{
 		Start: h.Start, End: h.Start + hour, Lowest: h.DutyMin, Highest: h.DutyMax,
 		Amounts: account.Amounts{
-			Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged), Latent: shortSpan(h.Latent),
+			Measured: shortSpan(h.Measured), Bridged: shortSpan(h.Bridged), Latent: shortSpan(h.Latent), Uncertain: shortSpan(h.Uncertain),
 			Given: h.Given, Taken: h.Taken, BridgedGiven: h.BridgedGiven, BridgedTaken: h.BridgedTaken,
 			Served:      served(h.Given, h.Taken, h.Duty),
 			Uncertainty: uncertainty(&h.Systematic, h.Random, h.Untold),

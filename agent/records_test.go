@@ -320,14 +320,14 @@ func TestRegistersBesideTheSum(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if err := db.Commit(store.Batch{Registers: []store.Register{{Load: ids["ramp"], Given: 5e9, Taken: 7, BridgedGiven: 3, BridgedTaken: 2, Measured: 11, Bridged: 17, Missing: 13}}}); err != nil {
+	if err := db.Commit(store.Batch{Registers: []store.Register{{Load: ids["ramp"], Given: 5e9, Taken: 7, BridgedGiven: 3, BridgedTaken: 2, Measured: 11, Bridged: 17, Missing: 13, Uncertain: 5}}}); err != nil {
 		t.Fatal(err)
 	}
 	h := historyIn(t, db, "UTC")
 	for _, tt := range []struct {
 		to   string
 		want *Register
-	}{{"", &Register{5e9, 7, 3, 2, 11, 17, 13}}, {"2027-01-01", &Register{5e9, 7, 3, 2, 11, 17, 13}}, {"2026-10-24T05:00", nil}} {
+	}{{"", &Register{5e9, 7, 3, 2, 11, 17, 13, 5}}, {"2027-01-01", &Register{5e9, 7, 3, 2, 11, 17, 13, 5}}, {"2026-10-24T05:00", nil}} {
 		r, err := h.report(t.Context(), Query{From: "2026-10-24", To: tt.to})
 		if err != nil {
 			t.Fatal(err)
@@ -344,7 +344,7 @@ func TestReportOfAllThatAMinuteTells(t *testing.T) {
 	const n = 1440
 	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, func(string, int) (store.Minute, bool) {
 		m := store.Minute{
-			Measured: 48, Bridged: 9, Missing: 3, Latent: 30, Given: 48e3, BridgedGiven: 8e3, BridgedTaken: 1e3,
+			Measured: 48, Bridged: 9, Missing: 3, Latent: 30, Uncertain: 12, Given: 48e3, BridgedGiven: 8e3, BridgedTaken: 1e3,
 			Duty: 1e3, DutyMin: 900, DutyMax: 1100, DutyUncertainty: 12, Witness: 50e3, Compared: 49e3, Random: 96 * 96,
 		}
 		m.Systematic[loads.PartFlow], m.Systematic[loads.PartCp] = 384, -288 // 3 and 4 of 5, times 96
@@ -357,7 +357,7 @@ func TestReportOfAllThatAMinuteTells(t *testing.T) {
 			t.Fatal(err)
 		}
 		p := r.Loads[0].Total
-		if p.Given != n*48e3 || p.BridgedGiven != n*8e3 || p.BridgedTaken != n*1e3 || p.Measured != n*48 || p.Bridged != n*9 || p.Missing != n*3 || p.Latent != n*30 || p.Coverage != 0.8 || *p.Mean != 1e3 {
+		if p.Given != n*48e3 || p.BridgedGiven != n*8e3 || p.BridgedTaken != n*1e3 || p.Measured != n*48 || p.Bridged != n*9 || p.Missing != n*3 || p.Latent != n*30 || p.Uncertain != n*12 || p.Coverage != 0.8 || *p.Mean != 1e3 {
 			t.Errorf("%+v: %+v", q, p)
 		}
 		if w := p.Witness; w == nil || w.Counted != n*50e3 || w.Served != n*49e3 || !near12(w.Deviation, 49./50-1) {

@@ -65,7 +65,8 @@ type PeriodReport struct {
 	Measured    float64  `json:"measured_s"`
 	Bridged     float64  `json:"bridged_s"`
 	Missing     float64  `json:"missing_s"`
-	Latent      float64  `json:"latent_s"` // within measured
+	Latent      float64  `json:"latent_s"`    // within measured
+	Uncertain   float64  `json:"uncertain_s"` // within measured
 	Coverage    float64  `json:"coverage"`
 	Mean        *float64 `json:"mean_duty_W"`
 	MeanU       *float64 `json:"mean_duty_uncertainty_W"` // standard
@@ -123,10 +124,11 @@ type Register struct {
 	Measured     float64 `json:"measured_s"`
 	Bridged      float64 `json:"bridged_s"`
 	Missing      float64 `json:"missing_s"`
+	Uncertain    float64 `json:"uncertain_s"` // within measured
 }
 
 func registerOf(r store.Register) *Register {
-	return &Register{r.Given, r.Taken, r.BridgedGiven, r.BridgedTaken, r.Measured, r.Bridged, r.Missing}
+	return &Register{r.Given, r.Taken, r.BridgedGiven, r.BridgedTaken, r.Measured, r.Bridged, r.Missing, r.Uncertain}
 }
 
 // periodReport tells p by the clock of the plan's zone.
@@ -137,7 +139,7 @@ func periodReport(p *account.Period, plan *account.Plan) PeriodReport {
 		Start: at(p.Start), End: at(p.End), AccountedFrom: at(p.From), AccountedTo: at(p.To),
 		Given: p.Given, Taken: p.Taken, BridgedGiven: p.BridgedGiven, BridgedTaken: p.BridgedTaken,
 		Uncertainty: u.Standard(), Systematic: u.Systematic(), Random: u.Random(), Expanded: CoverageFactor * u.Standard(), Shares: shares(u),
-		Measured: seconds(p.Measured), Bridged: seconds(p.Bridged), Missing: seconds(p.Missing), Latent: seconds(p.Latent), Coverage: p.Coverage(),
+		Measured: seconds(p.Measured), Bridged: seconds(p.Bridged), Missing: seconds(p.Missing), Latent: seconds(p.Latent), Uncertain: seconds(p.Uncertain), Coverage: p.Coverage(),
 	}
 	if p.Measured > 0 {
 		mean, meanU := p.Mean()

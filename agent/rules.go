@@ -13,7 +13,7 @@ import (
 
 // bookkeeping is raised whenever the engine books the same readings otherwise than
 // the one before it, for a reason that is not in the properties of a fluid.
-const bookkeeping = 4
+const bookkeeping = 5
 
 // rulesOf is a digest of all that heat is booked by: the site file, the engine, and
 // the properties of the fluids to the last bit. Beats that were booked by other rules

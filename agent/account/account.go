@@ -17,6 +17,7 @@ import (
 type Amounts struct {
 	Measured, Bridged int64   // ns; what is neither is missing
 	Latent            int64   // ns within Measured whose duty is the sensible part only
+	Uncertain         int64   // ns within Measured for which an uncertain reading was used
 	Given, Taken      float64 // J over the measured time, not below zero
 	// BridgedGiven and BridgedTaken are the heat that a straight line puts into the
 	// bridged time, J. They are in no other figure.
@@ -75,6 +76,9 @@ func (r *Record) check() error {
 	}
 	if r.Latent < 0 || r.Latent > r.Measured {
 		return fmt.Errorf("record at %s: %v latent of %v measured", stamp(r.Start), time.Duration(r.Latent), time.Duration(r.Measured))
+	}
+	if r.Uncertain < 0 || r.Uncertain > r.Measured {
+		return fmt.Errorf("record at %s: %v uncertain of %v measured", stamp(r.Start), time.Duration(r.Uncertain), time.Duration(r.Measured))
 	}
 	return nil
 }

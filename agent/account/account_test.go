@@ -170,6 +170,7 @@ func TestWrongRecordsAreNotCounted(t *testing.T) {
 		{wrong(func(r *Record) { r.Demand, r.HasDemand = math.Inf(-1), true }), nil, "demand is -Inf"},
 		{wrong(func(r *Record) { r.Bridged = 1 }), nil, "1m0s measured and 1ns bridged of 1m0s"},
 		{wrong(func(r *Record) { r.Latent = minute + 1 }), nil, "latent of 1m0s measured"},
+		{wrong(func(r *Record) { r.Uncertain = minute + 1 }), nil, "uncertain of 1m0s measured"},
 		{wrong(func(r *Record) { r.Measured, r.Bridged = math.MaxInt64, math.MaxInt64 }), nil, "bridged of 1m0s"},
 		{wrong(func(r *Record) { r.Measured = 61 * int64(time.Second) }), nil, "1m1s measured"},
 		{wrong(func(r *Record) { r.End = r.Start; r.Measured = 0 }), nil, "of 0s"},

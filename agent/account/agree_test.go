@@ -26,7 +26,7 @@ func history(t *rapid.T) (p Plan, records []Record) {
 		random = random*6364136223846793005 + 1442695040888963407 // Knuth's MMIX
 		if a := int64(random >> 33); a%step < 3 {
 			r := record(x, float64(a%2_000_003)-500e3, float64(a%9973), 1+a%60)
-			r.Bridged, r.Latent = minute-r.Measured, r.Measured/3
+			r.Bridged, r.Latent, r.Uncertain = minute-r.Measured, r.Measured/3, r.Measured/7
 			r.BridgedGiven, r.BridgedTaken = float64(a%1009), float64(a%1013)
 			r.Uncertainty.Parts[loads.PartFlow], r.Uncertainty.Parts[loads.PartDensity] = float64(a%1999)-999, 1/float64(1+a%83)
 			r.Uncertainty.Variance, r.Witness, r.Compared = float64(a%7919), float64(a%6007), float64(a%5003)-99
@@ -98,7 +98,7 @@ func checkTotal(t *rapid.T, by By, got, month Period, records []Record) {
 			t.Fatalf("by %v: %s %.17g, the records hold %.17g", by, f.what, f.got, want)
 		}
 	}
-	if got.Measured != month.Measured || got.Bridged != month.Bridged || got.Latent != month.Latent {
+	if got.Measured != month.Measured || got.Bridged != month.Bridged || got.Latent != month.Latent || got.Uncertain != month.Uncertain {
 		t.Fatalf("by %v: %d, %d and %d ns, by month %d, %d and %d", by, got.Measured, got.Bridged, got.Latent, month.Measured, month.Bridged, month.Latent)
 	}
 	got.Amounts = month.Amounts

@@ -25,6 +25,7 @@ func (r Record) Cut(from, to int64) Record {
 	part.Measured = min(covered, between(r.Measured))
 	part.Bridged = covered - part.Measured
 	part.Latent = min(part.Measured, between(r.Latent))
+	part.Uncertain = min(part.Measured, between(r.Uncertain))
 	part.scale(float64(to-from) / float64(r.End-r.Start))
 	return part
 }

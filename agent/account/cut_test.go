@@ -10,7 +10,7 @@ import (
 // The parts of a record are good records, wherever it is cut, and add up to it.
 func TestCut(t *testing.T) {
 	whole := Record{Start: 0, End: hour, Lowest: -1, Highest: 3e6, Demand: 2e6, HasDemand: true}
-	whole.Amounts = Amounts{Measured: hour, Latent: 7 * minute, Given: 7e9, Served: 7e9, Uncertainty: Uncertainty{Variance: 9, Unparted: 3}, Witness: 6e9, Compared: 6.1e9}
+	whole.Amounts = Amounts{Measured: hour, Latent: 7 * minute, Uncertain: 11 * minute, Given: 7e9, Served: 7e9, Uncertainty: Uncertainty{Variance: 9, Unparted: 3}, Witness: 6e9, Compared: 6.1e9}
 	whole.Uncertainty.Parts[loads.PartInlet] = -5e6
 	for _, r := range []Record{
 		whole,
@@ -50,7 +50,7 @@ func alike(a, b *Amounts) bool {
 			return false
 		}
 	}
-	for _, t := range [][2]int64{{a.Measured, b.Measured}, {a.Bridged, b.Bridged}, {a.Latent, b.Latent}} {
+	for _, t := range [][2]int64{{a.Measured, b.Measured}, {a.Bridged, b.Bridged}, {a.Latent, b.Latent}, {a.Uncertain, b.Uncertain}} {
 		if d := t[0] - t[1]; d < -3 || d > 3 {
 			return false
 		}

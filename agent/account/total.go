@@ -4,7 +4,7 @@ import "heatreeve/agent/loads"
 
 // sums add up amounts, with compensation.
 type sums struct {
-	measured, bridged, latent                int64
+	measured, bridged, latent, uncertain     int64
 	given, taken, bridgedGiven, bridgedTaken loads.Sum
 	served, variance, unparted               loads.Sum
 	witness, compared                        loads.Sum
@@ -15,6 +15,7 @@ func (s *sums) add(a *Amounts) {
 	s.measured += a.Measured
 	s.bridged += a.Bridged
 	s.latent += a.Latent
+	s.uncertain += a.Uncertain
 	s.given.Add(a.Given)
 	s.taken.Add(a.Taken)
 	s.bridgedGiven.Add(a.BridgedGiven)
@@ -31,7 +32,7 @@ func (s *sums) add(a *Amounts) {
 
 func (s *sums) amounts() Amounts {
 	a := Amounts{
-		Measured: s.measured, Bridged: s.bridged, Latent: s.latent,
+		Measured: s.measured, Bridged: s.bridged, Latent: s.latent, Uncertain: s.uncertain,
 		Given: s.given.Value(), Taken: s.taken.Value(), BridgedGiven: s.bridgedGiven.Value(), BridgedTaken: s.bridgedTaken.Value(),
 		Served:      s.served.Value(),
 		Uncertainty: Uncertainty{Variance: s.variance.Value(), Unparted: s.unparted.Value()},

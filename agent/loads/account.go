@@ -76,7 +76,7 @@ func (l *loadState) enter(f *Figure, g, span int64) {
 	l.turn(g)
 	heat := f.Duty * (float64(span) / 1e9)
 	l.Minute.measure(f, g, span, l.terms.gives)
-	l.Registers.book(givenUp(heat, l.terms.gives), span)
+	l.Registers.book(givenUp(heat, l.terms.gives), span, f.uncertain())
 	l.Witness.serve(heat)
 	l.entered(g + span)
 }

@@ -11,7 +11,7 @@ type standing uint8
 const (
 	holds     standing = iota
 	unheard            // its liveness tag has sent nothing yet
-	gone               // its liveness tag says that the source has gone
+	gone               // its liveness tag says that the source has gone, or is bad
 	silent             // there has been no sign of life for too long
 	unrenewed          // the source is back, and the reading is from before
 )
@@ -25,7 +25,7 @@ func (e *Engine) standing(tag int, g int64) standing {
 	switch {
 	case !a.Has:
 		return unheard
-	case a.Value == 0:
+	case a.Value == 0 || a.bad():
 		return gone
 	case g >= after(max(a.At, t.Held.At), e.cfg.Tags[alive].MaxAge):
 		return silent

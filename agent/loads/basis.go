@@ -231,5 +231,5 @@ func (e *Engine) heldReading(tag int) Reading {
 	if !h.Has {
 		return Reading{Tag: tag}
 	}
-	return Reading{Tag: tag, At: h.At, Value: h.Value}
+	return Reading{Tag: tag, At: h.At, Value: h.Value, Mark: h.Mark}
 }

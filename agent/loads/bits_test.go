@@ -6,6 +6,8 @@ import (
 	"testing"
 
 	"pgregory.net/rapid"
+
+	"heatreeve/ingest/quality"
 )
 
 // course draws ten minutes of readings of the three tags, stamped irregularly,
@@ -19,7 +21,14 @@ func course(t *rapid.T) []Reading {
 			if tag != flow {
 				v = 300 + 30*v
 			}
-			all = append(all, Reading{Tag: tag, At: epoch + s, Value: v})
+			r := Reading{Tag: tag, At: epoch + s, Value: v}
+			switch rapid.IntRange(0, 40).Draw(t, "mark") {
+			case 1:
+				r.Value, r.Mark = 1e300, quality.Failed
+			case 2, 3, 4:
+				r.Mark = quality.OffSpec
+			}
+			all = append(all, r)
 			s += rapid.Int64Range(1, 9e9).Draw(t, "step")
 			if rapid.IntRange(0, 60).Draw(t, "gap") == 0 {
 				s += 90e9
@@ -53,7 +62,7 @@ func fingerprint(e *Engine) []uint64 {
 		for _, v := range []float64{l.Given, l.Taken, l.Figure.Duty, l.Figure.Uncertainty, l.Figure.Rate, l.Figure.Random, l.Figure.Variance, l.Figure.Rate, l.BridgedGiven, l.BridgedTaken, l.Means[0].Duty, l.Means[2].Duty, l.Means[2].Coverage} {
 			bits = append(bits, math.Float64bits(v))
 		}
-		bits = append(bits, uint64(l.Measured), uint64(l.Bridged), uint64(l.Missing))
+		bits = append(bits, uint64(l.Measured), uint64(l.Bridged), uint64(l.Missing), uint64(l.Uncertain), uint64(l.Figure.Mark))
 	}
 	return bits
 }

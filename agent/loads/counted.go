@@ -1,5 +1,7 @@
 package loads
 
+import "heatreeve/ingest/quality"
+
 // counted is the time of a load with a counter for its flow that the next count decides
 // on. Its heat is kept for one unit of flow a second.
 type counted struct {
@@ -94,8 +96,11 @@ func (l *loadState) settle(p *piece, c *count) {
 	case !c.Known:
 		l.enterMissing(p.From, p.To)
 	case c.Amount == 0:
-		l.enter(&Figure{Idle: true}, p.From, p.To-p.From)
+		l.enter(&Figure{Idle: true, Mark: c.Mark}, p.From, p.To-p.From)
 	default:
+		if c.Mark.Quality() == quality.Uncertain {
+			p.Sum.Sum.Uncertain = p.Sum.Sum.Measured
+		}
 		l.enterPiece(p, c.rate())
 	}
 }

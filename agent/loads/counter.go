@@ -3,6 +3,8 @@ package loads
 import (
 	"fmt"
 	"math"
+
+	"heatreeve/ingest/quality"
 )
 
 const (
@@ -19,11 +21,14 @@ const (
 type count struct {
 	At       int64 // stamp of the newest reading told; 0 before the first
 	Value    float64
-	Before   float64 // the reading before that
-	From, To int64   // grid points that reached the last reading but one, and the last
-	Amount   float64 // in the unit of the register
-	Known    bool    // false after one reading alone, a reset, or more than can be
-	Why      string  // it is not known
+	Before   float64      // the reading before that
+	From, To int64        // grid points that reached the last reading but one, and the last
+	Amount   float64      // in the unit of the register
+	Known    bool         // false after one reading alone, a reset, or more than can be
+	Why      string       // it is not known
+	Mark     quality.Mark // the worst of the two readings
+	Of       quality.Mark // of the newest reading
+	Broken   quality.Mark // bad, of a reading since, after which the register may have stood still
 }
 
 // rate is the mean flow of the count, a second.
@@ -80,18 +85,29 @@ func (e *Engine) enlistCounters() {
 	}
 }
 
+// breaks reports whether a bad reading of a register says that it may not count, and not
+// only that it was not read.
+func breaks(m quality.Mark) bool {
+	return m != quality.NoValue && m != quality.Offline && m != quality.StaleAtSource
+}
+
 // counts brings what the counters have told to g. One that reports by exception tells
 // by its silence that nothing has passed, each time that the silence has lasted for
-// its maximum age.
+// its maximum age. A bad reading is no count: the next good one tells what has passed since
+// the last, unless the bad one says that the register itself may have stood still.
 func (e *Engine) counts(g int64) {
 	for _, b := range e.counters {
 		t := &e.tags[b.tag]
 		switch {
+		case t.Held.bad():
+			if breaks(t.Held.Mark) {
+				t.Count.Broken = t.Held.Mark
+			}
 		case t.Held.Has && t.Held.At != t.Count.At:
 			e.tell(b, g)
 		case g >= e.silentUntil(b.tag):
 			t.Count.From, t.Count.To, t.Count.Amount, t.Count.Known = t.Count.To, g, 0, true
-			t.Count.Before = t.Count.Value
+			t.Count.Before, t.Count.Mark = t.Count.Value, t.Count.Of
 		}
 	}
 }
@@ -100,7 +116,7 @@ func (e *Engine) counts(g int64) {
 // nothing has passed; MaxInt64 where it tells nothing.
 func (e *Engine) silentUntil(tag int) int64 {
 	t := &e.tags[tag]
-	if !e.cfg.Tags[tag].OnChange || t.Count.At == 0 || t.standing != holds {
+	if !e.cfg.Tags[tag].OnChange || t.Count.At == 0 || t.standing != holds || t.Held.bad() {
 		return math.MaxInt64
 	}
 	return after(t.Count.To, e.cfg.Tags[tag].MaxAge)
@@ -110,10 +126,14 @@ func (e *Engine) silentUntil(tag int) int64 {
 func (e *Engine) tell(b bounded, g int64) {
 	t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
 	was := t.Count
-	t.Count = count{At: t.Held.At, Value: t.Held.Value, Before: was.Value, From: was.To, To: g}
+	t.Count = count{At: t.Held.At, Value: t.Held.Value, Before: was.Value, From: was.To, To: g, Of: t.Held.Mark, Mark: quality.Worse(t.Held.Mark, was.Of)}
 	c := &t.Count
 	if was.At == 0 {
 		c.Why = fmt.Sprintf("counter %q has told one count, and a flow takes two", tag.Name)
+		return
+	}
+	if was.Broken != quality.None {
+		c.Why = fmt.Sprintf("counter %q was bad since its count before, %v: what passed is not known", tag.Name, was.Broken)
 		return
 	}
 	span := max(c.At-was.At, c.To-c.From)
@@ -134,10 +154,30 @@ func (e *Engine) tell(b bounded, g int64) {
 func (e *Engine) counting(load int, g int64) bool {
 	i := e.loads[load].terms.counter
 	t, tag := &e.tags[i], &e.cfg.Tags[i]
-	if tag.OnChange {
+	switch {
+	case t.Held.bad() && (breaks(t.Held.Mark) || t.Count.At == 0):
+		return false
+	case tag.OnChange:
 		return t.standing == holds
+	case t.Held.bad():
+		return g-t.Count.At < tag.MaxAge
 	}
 	return t.Held.Has && g-t.Held.At < tag.MaxAge
+}
+
+// uncounted marks f where the newest reading of the counter of the flow is bad, and returns
+// false where the count before that does not stand any more.
+func (e *Engine) uncounted(load int, f *Figure) bool {
+	t, tag := &e.tags[e.loads[load].terms.counter], &e.cfg.Tags[e.loads[load].terms.counter]
+	if e.counting(load, f.At) {
+		if !tag.OnChange {
+			f.Until = min(f.Until, after(t.Count.At, tag.MaxAge))
+		}
+		return true
+	}
+	f.mark(t.Held.Mark, tag.Name)
+	*f = f.unusable(tag.Name)
+	return false
 }
 
 // flow reads the flow of a stream. Where it is counted it is one unit a second, for the
@@ -145,6 +185,9 @@ func (e *Engine) counting(load int, g int64) bool {
 // proportion: what an error of the register has in common falls out of a difference.
 func (e *Engine) flow(load int, f *Figure, flow *float64, d *doubt) bool {
 	src := e.equations[load].Flow
+	if e.loads[load].Counted != nil && e.tags[src.Tag].Held.bad() && !e.uncounted(load, f) {
+		return false
+	}
 	if !e.read(f, src, flow, d) {
 		return false
 	}
@@ -169,10 +212,11 @@ func (e *Engine) live(load int) Figure {
 	case !c.Known:
 		return f.fail(NoReading, c.Why)
 	case c.Amount == 0:
-		return Figure{At: f.At, Idle: true, Until: f.Until}
+		f = Figure{At: f.At, Idle: true, Until: f.Until}
 	case f.Measured():
 		f.scale(c.rate())
 	}
+	f.mark(c.Mark, e.cfg.Tags[l.terms.counter].Name)
 	return f
 }
 

@@ -22,10 +22,11 @@ type Engine struct {
 	tags      []tagState
 	loads     []loadState
 	tally     []Tally
-	users     [][]int    // loads that read each tag
-	onChange  []int      // tags that report by exception
-	follows   [][]follow // trends that each tag's readings go into
-	holds     []int      // loads with a hold
+	doubted   [][]Doubted // of each tag, by mark; nil where none has any
+	users     [][]int     // loads that read each tag
+	onChange  []int       // tags that report by exception
+	follows   [][]follow  // trends that each tag's readings go into
+	holds     []int       // loads with a hold
 	counters  []bounded
 	renewed   []bool // tags whose numbers meant something else in the restored state
 }
@@ -36,6 +37,12 @@ type Tally struct {
 	// Reset counts the falls of a counter that no roll-over explains, and Implausible the
 	// rises by more than can have passed.
 	Reset, Implausible uint64
+}
+
+// Doubted is how many readings had a mark.
+type Doubted struct {
+	Mark     quality.Mark
+	Readings uint64
 }
 
 // New returns an engine without history. The error names what in cfg cannot be
@@ -109,12 +116,10 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 	return closed
 }
 
-// file takes in readings. One that its source calls bad has no value to hold.
+// file takes in readings.
 func (e *Engine) file(readings []Reading) {
 	for _, r := range readings {
-		if r.Mark.Quality() != quality.Bad {
-			e.count(r.Tag, e.tags[r.Tag].take(sample{r.At, r.Value}, e.booked(), e.cfg.Grid))
-		}
+		e.take(r)
 	}
 }
 
@@ -161,7 +166,7 @@ func (e *Engine) Adopt(b Beat) {
 
 // ClearTally forgets what has become of readings so far: after a restart, that of the
 // beats put through again.
-func (e *Engine) ClearTally() { clear(e.tally) }
+func (e *Engine) ClearTally() { clear(e.tally); clear(e.doubted) }
 
 // booked returns the newest grid point computed, or a time before all others.
 func (e *Engine) booked() int64 {
@@ -171,15 +176,37 @@ func (e *Engine) booked() int64 {
 	return e.next - e.cfg.Grid
 }
 
-func (e *Engine) count(tag int, r Receipt) {
-	switch r {
+// take files one reading, and counts what became of it.
+func (e *Engine) take(r Reading) {
+	switch e.tags[r.Tag].take(sample{r.At, r.Value, r.Mark}, e.booked(), e.cfg.Grid) {
+	case Taken:
+		if r.Mark != quality.None {
+			e.doubt(r.Tag, r.Mark)
+		}
 	case Repeated:
-		e.tally[tag].Repeated++
+		e.tally[r.Tag].Repeated++
 	case Late:
-		e.tally[tag].Late++
+		e.tally[r.Tag].Late++
 	case Crowded:
-		e.tally[tag].Crowded++
+		e.tally[r.Tag].Crowded++
 	}
+}
+
+// doubt counts a reading by its mark.
+func (e *Engine) doubt(tag int, m quality.Mark) {
+	if e.doubted == nil {
+		e.doubted = make([][]Doubted, len(e.tags))
+	}
+	all := e.doubted[tag]
+	i := slices.IndexFunc(all, func(d Doubted) bool { return d.Mark >= m })
+	if i < 0 {
+		i = len(all)
+	}
+	if i == len(all) || all[i].Mark != m {
+		all = slices.Insert(all, i, Doubted{Mark: m})
+	}
+	all[i].Readings++
+	e.doubted[tag] = all
 }
 
 // reachBack is how long before event time the accounts may begin: a stray stamp of

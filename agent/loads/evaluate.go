@@ -3,6 +3,8 @@ package loads
 import (
 	"fmt"
 	"math"
+
+	"heatreeve/ingest/quality"
 )
 
 // held is the newest reading of a tag that event time has passed.
@@ -10,7 +12,11 @@ type held struct {
 	At    int64
 	Value float64
 	Has   bool
+	Mark  quality.Mark
 }
+
+// bad reports whether the reading says that there is no value.
+func (h *held) bad() bool { return h.Mark.Quality() == quality.Bad }
 
 // evaluate works the figure of a load at the grid point g from the values held
 // then. It depends on nothing else.
@@ -106,9 +112,23 @@ func (e *Engine) read(f *Figure, src Source, value *float64, d *doubt) bool {
 		*f = f.fail(Stale, fmt.Sprintf("tag %q: last reading is older than its max_age of %g s", tag.Name, float64(tag.MaxAge)/1e9))
 		return false
 	}
-	*value, *d = h.Value, tag.doubt(h.Value, &e.tags[src.Tag].Scatter)
 	if !tag.OnChange {
 		f.Until = min(f.Until, after(h.At, tag.MaxAge))
 	}
+	if tag.Counter == nil {
+		f.mark(h.Mark, tag.Name)
+		if h.bad() {
+			*f = f.unusable(tag.Name)
+			return false
+		}
+	}
+	*value, *d = h.Value, tag.doubt(h.Value, &e.tags[src.Tag].Scatter)
 	return true
+}
+
+// unusable is the figure without one because the tag, whose mark it has, reads bad.
+func (f *Figure) unusable(tag string) Figure {
+	bad := f.fail(BadReading, fmt.Sprintf("tag %q is bad: %v", tag, f.Mark))
+	bad.Mark, bad.By = f.Mark, f.By
+	return bad
 }

@@ -1,6 +1,10 @@
 package loads
 
-import "fmt"
+import (
+	"fmt"
+
+	"heatreeve/ingest/quality"
+)
 
 // Fault says why a load has no figure. Its text is part of the agent's
 // interface.
@@ -15,6 +19,7 @@ const (
 	OutOfRange       // a state lies outside the fluid's range
 	Moving           // a vessel is being filled or drawn
 	Fitting          // too few readings yet to tell a rate
+	BadReading       // a tag's source says that its value is bad
 )
 
 func (f Fault) String() string {
@@ -35,12 +40,15 @@ func (f Fault) String() string {
 		return "content changing"
 	case Fitting:
 		return "fitting"
+	case BadReading:
+		return "bad reading"
 	}
 	return fmt.Sprintf("Fault(%d)", uint8(f))
 }
 
 // Figure is the duty of one load at one grid point, with what it was worked
-// from. Where Fault is set, only Fault, Reason and At mean anything; where Idle
+// from. Where Fault is set, only Fault, Reason and At mean anything, and with [BadReading]
+// Mark and By; where Idle
 // is set, duty is zero: the temperatures of a stream are not looked at, and the rate of a
 // vessel is not told from rest.
 type Figure struct {
@@ -64,8 +72,31 @@ type Figure struct {
 	Content, Mass, Rate float64
 	Pressure            float64 // at the inlet, Pa
 	Remark
+	// Mark is the worst of those of the readings that the figure was worked from, and By
+	// the first tag that has it: the flow before the temperatures. Readings in a fitted rate
+	// count, and those of the parcels that leave a hold.
+	Mark  quality.Mark
+	By    string
 	Until int64 // instant at which the figure must be worked anew, where no tag reports before
 }
+
+// mark takes in the mark of a reading that the figure uses.
+func (f *Figure) mark(m quality.Mark, tag string) {
+	if worst := quality.Worse(f.Mark, m); worst != f.Mark {
+		f.Mark, f.By = worst, tag
+	}
+}
+
+// Quality is how far the figure can be relied on: bad where there is none.
+func (f *Figure) Quality() quality.Quality {
+	if !f.Measured() {
+		return quality.Bad
+	}
+	return f.Mark.Quality()
+}
+
+// uncertain reports whether the time of a measured figure is uncertain.
+func (f *Figure) uncertain() bool { return f.Mark.Quality() == quality.Uncertain }
 
 // Measured reports whether the figure may be booked.
 func (f *Figure) Measured() bool { return f.Fault == NoFault }

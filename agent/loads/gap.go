@@ -15,7 +15,7 @@ func (p *gap) open() bool { return p.To != 0 }
 // missing, or too few are back yet to tell a rate, and there is nothing else that speaks
 // against the last duty.
 func (l *loadState) mayBridge(f *Figure, g int64) bool {
-	return l.terms.bridge > 0 && (f.Fault == NoReading || f.Fault == Stale || f.Fault == Fitting) &&
+	return l.terms.bridge > 0 && (f.Fault == NoReading || f.Fault == Stale || f.Fault == BadReading || f.Fault == Fitting) &&
 		(l.Gap.open() || l.Gap.Last != 0 && g == l.Gap.Last+l.terms.grid)
 }
 

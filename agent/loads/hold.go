@@ -1,6 +1,10 @@
 package loads
 
-import "fmt"
+import (
+	"fmt"
+
+	"heatreeve/ingest/quality"
+)
 
 // queue is what is between the two thermometers of a stream, in the order in which it
 // leaves (plug flow: nothing mixes, and as much leaves as enters).
@@ -10,6 +14,7 @@ type queue struct{ Parcels []parcel }
 type parcel struct {
 	Volume float64 // m³, when it entered
 	T      float64 // K
+	Mark   quality.Mark
 }
 
 // full reports whether the queue fills the hold, m³.
@@ -25,22 +30,23 @@ func (q *queue) volume() (v float64) {
 }
 
 // leaving returns the mean temperature of the volume that leaves next, while as much
-// enters at T.
-func (q *queue) leaving(volume, T float64) float64 {
-	left, mean := volume, 0.0
+// enters at T, and the worst mark of what it was told by.
+func (q *queue) leaving(volume, T float64) (mean float64, m quality.Mark) {
+	left := volume
 	for _, p := range q.Parcels {
 		v := min(p.Volume, left)
 		mean += v / volume * (p.T - T)
+		m = quality.Worse(m, p.Mark)
 		if left -= v; left <= 0 {
 			break
 		}
 	}
-	return T + mean
+	return T + mean, m
 }
 
 // move lets a volume in at T, and out what the hold has no room for. What enters joins
 // the parcel before it until that is a sixtieth of the hold, so that there are never many.
-func (q *queue) move(volume, T, hold float64) {
+func (q *queue) move(volume, T, hold float64, m quality.Mark) {
 	n := len(q.Parcels)
 	if n == 0 || q.Parcels[n-1].Volume >= hold/slots {
 		q.Parcels = append(q.Parcels, parcel{T: T})
@@ -49,6 +55,7 @@ func (q *queue) move(volume, T, hold float64) {
 	p := &q.Parcels[n-1]
 	p.Volume += volume
 	p.T += (T - p.T) * (volume / p.Volume)
+	p.Mark = quality.Worse(p.Mark, m)
 	over, out := q.volume()-hold, 0
 	for ; out < n && over >= q.Parcels[out].Volume; out++ {
 		over -= q.Parcels[out].Volume
@@ -86,7 +93,8 @@ func (e *Engine) delay(load int, f *Figure, s *steps) bool {
 	case q.Hold == 0:
 		return true
 	case s.again:
-		x.Inlet = l.left
+		x.Inlet = l.left.T
+		f.mark(l.left.Mark, e.nameOf(q.Inlet))
 		return true
 	}
 	if why, _ := q.phase(&q.declared, x); why != "" {
@@ -102,9 +110,18 @@ func (e *Engine) delay(load int, f *Figure, s *steps) bool {
 		*f = f.fail(Fitting, fmt.Sprintf("%.4g l of the hold of %.4g l are filled with what the inlet has told of", l.Hold.volume()*1e3, q.Hold*1e3))
 		return false
 	}
-	x.Inlet = l.Hold.leaving(passes*float64(e.cfg.Grid)/1e9, x.Inlet)
-	l.left = x.Inlet
+	x.Inlet, l.left.Mark = l.Hold.leaving(passes*float64(e.cfg.Grid)/1e9, x.Inlet)
+	l.left.T = x.Inlet
+	f.mark(l.left.Mark, e.nameOf(q.Inlet))
 	return true
+}
+
+// nameOf is the name of the tag that a source reads, empty of a constant.
+func (e *Engine) nameOf(src Source) string {
+	if src.Tag < 0 {
+		return ""
+	}
+	return e.cfg.Tags[src.Tag].Name
 }
 
 // carry moves what is in the holds by a grid step from g.
@@ -121,12 +138,13 @@ func (e *Engine) carry(g int64) {
 		if q.idle(x.Flow) {
 			continue
 		}
+		f.Mark = quality.None // of the flow: it tells no temperature
 		known := x.Flow > 0 && e.read(&f, q.Inlet, &x.Inlet, &u) && e.read(&f, q.Pressure, &x.Pressure, &u)
 		passes, err := q.displacement(&q.declared, &x)
 		if !known || err != nil || !(passes <= largestMassFlow) {
 			l.Hold = queue{}
 			continue
 		}
-		l.Hold.move(passes*float64(e.cfg.Grid)/1e9, x.Inlet, q.Hold)
+		l.Hold.move(passes*float64(e.cfg.Grid)/1e9, x.Inlet, q.Hold, f.Mark)
 	}
 }

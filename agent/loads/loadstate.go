@@ -15,7 +15,7 @@ type loadState struct {
 	figure    Figure   // at one unit of flow a second where it is counted
 	fresh     bool     // figure was worked from the values held now
 	counting  bool     // the counter of the flow is alive
-	left      float64  // what the present figure took to leave the hold, K
+	left      parcel   // what the present figure took to leave the hold
 	closed    []Minute // not yet handed over
 }
 

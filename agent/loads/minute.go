@@ -21,6 +21,7 @@ type Minute struct {
 	Bridged                    int64
 	BridgedGiven, BridgedTaken float64
 	Latent                     int64   // ns within Measured whose duty is the sensible part only
+	Uncertain                  int64   // ns within Measured for which an uncertain reading was used
 	Duty                       float64 // mean, W, positive in the load's service
 	DutyMin, DutyMax           float64 // of the grid's figures, W
 	Uncertainty                float64 // mean standard uncertainty, W
@@ -111,6 +112,9 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 	s.DutyMin, s.DutyMax = min(s.DutyMin, f.Duty), max(s.DutyMax, f.Duty)
 	s.Content += f.Content * dt
 	s.Random += f.Variance * dt
+	if f.uncertain() {
+		s.Uncertain += span
+	}
 	if f.Idle {
 		s.Idle += span
 		return
@@ -137,6 +141,7 @@ func (m *minuteSum) add(o *Minute, g int64, rate float64) {
 	s.Bridged += o.Bridged
 	s.Missing += o.Missing
 	s.Latent += o.Latent
+	s.Uncertain += o.Uncertain
 	s.Given += o.Given * rate
 	s.Taken += o.Taken * rate
 	s.BridgedGiven += o.BridgedGiven * rate

@@ -1,6 +1,11 @@
 package loads
 
-import "math"
+import (
+	"math"
+	"slices"
+
+	"heatreeve/ingest/quality"
+)
 
 // recount is the account of a plant as its rules are told, from all readings at once and
 // without any state: for each grid point it looks through all that there is. Streams of a
@@ -27,8 +32,11 @@ func (o *recount) alive(tag int, g int64) (alive, heard bool) {
 	sign := o.cfg.Tags[tag].Alive
 	s, heard := o.held(sign, g)
 	own, _ := o.held(tag, g)
-	return heard && s.Value != 0 && g-max(s.At, own.At) < o.cfg.Tags[sign].MaxAge, heard
+	return heard && s.Value != 0 && !isBad(s) && g-max(s.At, own.At) < o.cfg.Tags[sign].MaxAge, heard
 }
+
+func isBad(r Reading) bool       { return r.Mark.Quality() == quality.Bad }
+func isUncertain(r Reading) bool { return r.Mark.Quality() == quality.Uncertain }
 
 // known is what a tag tells at a grid point.
 type known struct {
@@ -50,7 +58,7 @@ func (o *recount) column(src Source) (all []known) {
 		tag := &o.cfg.Tags[src.Tag]
 		r, has := o.held(src.Tag, g)
 		if step := r.At - before.At; has && step > 0 {
-			if before.At != 0 && step < tag.MaxAge {
+			if before.At != 0 && step < tag.MaxAge && !isBad(before) && !isBad(r) {
 				n = min(n+1, 16)
 				d := (r.Value - before.Value) * float64(step) / 1e9
 				swept += (d*d - swept) / n
@@ -66,6 +74,7 @@ func (o *recount) column(src Source) (all []known) {
 			}
 			k.usable = has && alive && r.At > lapse
 		}
+		k.usable = k.usable && (tag.Counter != nil || !isBad(r))
 		if n > 0 && !tag.OnChange && tag.Deadband == 0 && tag.Counter == nil {
 			k.variance = swept / 2 / steps
 		}
@@ -79,34 +88,65 @@ type told struct {
 	from, to int64
 	amount   float64
 	known    bool
+	doubted  bool // by the mark of one of its two readings
 }
 
 // tells lists what a register told; one that reports on change tells by its silence too.
 func (o *recount) tells(tag int, largest float64) (all []told) {
 	c := o.cfg.Tags[tag].Counter
-	var last Reading
+	var last, broken Reading
 	var to int64
 	for i, x := range o.column(FromTag(tag)) {
 		g := o.from + int64(i)*o.cfg.Grid
 		switch {
+		case x.has && isBad(x.Reading):
+			if stopped(x.Mark) {
+				broken = x.Reading
+			}
 		case x.has && x.At != last.At:
-			k := told{from: to, to: g}
+			k := told{from: to, to: g, doubted: isUncertain(x.Reading) || isUncertain(last)}
 			rise := x.Value - last.Value
 			if rolls := c.Modulus > 0 && -rise > c.Modulus/2; rolls {
 				rise += c.Modulus
 			}
 			most := 1.1*largest*float64(max(x.At-last.At, g-to))/1e9 + o.cfg.Tags[tag].Resolution
-			if last.At != 0 && rise >= 0 && rise <= most {
+			if last.At != 0 && rise >= 0 && rise <= most && broken.At <= last.At {
 				k.amount, k.known = rise, true
 			}
 			all = append(all, k)
 			last, to = x.Reading, g
 		case o.cfg.Tags[tag].OnChange && x.usable && last.At != 0 && g-to >= o.cfg.Tags[tag].MaxAge:
-			all = append(all, told{to, g, 0, true})
+			all = append(all, told{to, g, 0, true, isUncertain(last)})
 			to = g
 		}
 	}
 	return all
+}
+
+// stopped tells of a bad mark of a register that it may not have counted meanwhile.
+func stopped(m quality.Mark) bool {
+	return slices.Contains([]quality.Mark{quality.Rejected, quality.Failed, quality.FunctionCheck, quality.OutOfService}, m)
+}
+
+// counts tells at which grid points a register is alive: where its last reading is bad, by
+// the last good one, unless it has stopped.
+func (o *recount) counts(tag int) (alive []bool) {
+	var good Reading
+	for i, x := range o.column(FromTag(tag)) {
+		g := o.from + int64(i)*o.cfg.Grid
+		is := x.usable
+		switch {
+		case !x.has:
+		case !isBad(x.Reading):
+			good = x.Reading
+		case good.At == 0 || stopped(x.Mark):
+			is = false
+		case !o.cfg.Tags[tag].OnChange:
+			is = g-good.At < o.cfg.Tags[tag].MaxAge
+		}
+		alive = append(alive, is)
+	}
+	return alive
 }
 
 // lasting is the standard uncertainty of a reading by what lasts: its accuracy, and what

@@ -6,6 +6,8 @@ import (
 	"math/rand/v2"
 	"slices"
 	"testing"
+
+	"heatreeve/ingest/quality"
 )
 
 // The tags of a plant that is recounted: those of the mixed plant, and a counter, a heat
@@ -65,7 +67,11 @@ func anyCourse(r *rand.Rand, grid, length int64) (all []Reading) {
 			last = anyValue(r, tag, last, calm)
 			repeated := len(all) > 0 && all[len(all)-1].Tag == tag && all[len(all)-1].At == at
 			if !repeated && (through || s < silent || s >= heard) {
-				all = append(all, Reading{Tag: tag, At: at, Value: last})
+				x := Reading{Tag: tag, At: at, Value: last}
+				if x.Mark = anyMark(r, calm); isBad(x) && r.IntN(2) == 0 {
+					x.Value = math.NaN()
+				}
+				all = append(all, x)
 			}
 			if r.IntN(30*calm) == 0 {
 				s += 10*second + r.Int64N(120e9)
@@ -74,6 +80,17 @@ func anyCourse(r *rand.Rand, grid, length int64) (all []Reading) {
 	}
 	slices.SortStableFunc(all, func(a, b Reading) int { return int(a.At - b.At) })
 	return all
+}
+
+// anyMark draws the mark of a reading, good for most.
+func anyMark(r *rand.Rand, calm int) quality.Mark {
+	switch r.IntN(20 * calm) {
+	case 0:
+		return []quality.Mark{quality.NoValue, quality.Offline, quality.Failed, quality.FunctionCheck}[r.IntN(4)]
+	case 1, 2, 3:
+		return []quality.Mark{quality.OffSpec, quality.LastUsable, quality.Maintenance}[r.IntN(3)]
+	}
+	return quality.None
 }
 
 // anyValue draws what a tag reads after last.
@@ -168,7 +185,7 @@ func TestRecount(t *testing.T) {
 			want := o.account(i)
 			what := fmt.Sprintf("seed %d, load %d", seed, i)
 			total := want[0]
-			if l.Measured != total.Measured || l.Bridged != total.Bridged || l.Missing != total.Missing || l.Undecided != o.to-o.from-total.Measured-total.Bridged-total.Missing {
+			if l.Measured != total.Measured || l.Uncertain != total.Uncertain || l.Bridged != total.Bridged || l.Missing != total.Missing || l.Undecided != o.to-o.from-total.Measured-total.Bridged-total.Missing {
 				t.Fatalf("%s: %+v, undecided %d; want %+v", what, l.Totals, l.Undecided, total)
 			}
 			alike(t, what, Minute{Given: l.Given, Taken: l.Taken, BridgedGiven: l.BridgedGiven, BridgedTaken: l.BridgedTaken},
@@ -177,9 +194,10 @@ func TestRecount(t *testing.T) {
 			seen.Measured += min(total.Measured, total.Bridged, total.Missing, total.Idle)
 			seen.Compared += math.Abs(total.Compared)
 			seen.Random += total.Random
+			seen.Uncertain += min(total.Uncertain, total.Measured-total.Uncertain)
 		}
 	}
-	if seen.Measured == 0 || seen.Compared == 0 || seen.Random == 0 {
+	if seen.Measured == 0 || seen.Compared == 0 || seen.Random == 0 || seen.Uncertain == 0 {
 		t.Errorf("the courses drawn do not show everything: %+v", seen)
 	}
 }
@@ -195,7 +213,7 @@ func compareMinutes(t *testing.T, what string, got map[int64]Minute, want map[in
 		if start == 0 || open || !ok && w.Measured+w.Bridged == 0 {
 			continue
 		}
-		if m.Measured != w.Measured || m.Bridged != w.Bridged || m.Missing != w.Missing || m.Idle != w.Idle {
+		if m.Measured != w.Measured || m.Bridged != w.Bridged || m.Missing != w.Missing || m.Idle != w.Idle || m.Uncertain != w.Uncertain {
 			t.Fatalf("%s: minute %+v, want %+v", what, m, *w)
 		}
 		w.Random = m.Random // that of a count lies in one of its minutes

@@ -20,6 +20,7 @@ type instant struct {
 	duty         float64
 	parts        Shares
 	variance     float64
+	uncertain    bool
 	fate         int
 }
 
@@ -28,26 +29,31 @@ func (o *recount) figures(load int) []instant {
 	s := &o.cfg.Loads[load].Stream
 	counted := o.counted(load)
 	flows, ins, outs := o.column(s.Flow), o.column(s.Inlet), o.column(s.Outlet)
+	alive := make([]bool, len(flows))
+	if counted {
+		alive = o.counts(s.Flow.Tag)
+	}
 	points := make([]instant, len(flows))
 	for i := range points {
 		p := &points[i]
 		p.g = o.from + int64(i)*o.cfg.Grid
-		p.counting = !counted || flows[i].usable
+		p.counting = !counted || alive[i]
 		m := flows[i].Value
 		if counted {
 			m = 1
 		}
 		switch {
-		case !flows[i].usable:
+		case counted && !alive[i] || !counted && !flows[i].usable:
 			p.gap = true
 		case !counted && math.Abs(m) <= s.IdleBelow:
-			p.figure, p.idle = true, true
+			p.figure, p.idle, p.uncertain = true, true, isUncertain(flows[i].Reading)
 		case m < 0:
 		case !ins[i].usable || !outs[i].usable:
 			p.gap = true
 		case max(ins[i].Value, outs[i].Value) > liquid.hi-s.Margin:
 		default:
 			p.figure = true
+			p.uncertain = !counted && isUncertain(flows[i].Reading) || isUncertain(ins[i].Reading) || isUncertain(outs[i].Reading)
 			o.work(p, s, m, flows[i], ins[i], outs[i])
 		}
 	}
@@ -134,13 +140,14 @@ func (o *recount) count(points []instant, tells []told, step float64) (variance 
 		case !tells[n].known:
 			p.fate = isMissing
 		case tells[n].amount == 0:
-			*p = instant{g: p.g, counting: p.counting, idle: true, fate: isMeasured}
+			*p = instant{g: p.g, counting: p.counting, idle: true, fate: isMeasured, uncertain: tells[n].doubted}
 		default:
 			seconds := float64(tells[n].to-tells[n].from) / 1e9
 			if p.fate == isMeasured {
 				heats[n] += p.duty * float64(o.cfg.Grid) / 1e9 / seconds
 			}
 			p.scale(tells[n].amount / seconds)
+			p.uncertain = p.uncertain || tells[n].doubted
 		}
 	}
 	for _, h := range heats {
@@ -195,6 +202,9 @@ func (p *instant) add(m *Minute, grid int64, gives bool) {
 	switch p.fate {
 	case isMeasured:
 		m.Measured += grid
+		if p.uncertain {
+			m.Uncertain += grid
+		}
 		m.Given += max(heat, 0)
 		m.Taken += max(-heat, 0)
 		m.Random += p.variance * float64(grid) / 1e9

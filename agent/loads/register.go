@@ -22,16 +22,21 @@ func (s Sum) Value() float64 { return s.Hi + s.Lo }
 
 // Registers are the totals of one load since it was first accounted for. Heat
 // in J only rises in each direction; Measured, Bridged and Missing in ns add up to the
-// time accounted for. What was bridged is not in Given and Taken but apart.
+// time accounted for. What was bridged is not in Given and Taken but apart. Uncertain is the
+// part of Measured for which an uncertain reading was used.
 type Registers struct {
 	Given, Taken               Sum
 	BridgedGiven, BridgedTaken Sum
 	Measured, Bridged, Missing int64
+	Uncertain                  int64
 }
 
 // book adds heat in J, positive where the stream gave it up.
-func (r *Registers) book(heat float64, span int64) {
+func (r *Registers) book(heat float64, span int64, uncertain bool) {
 	r.Measured += span
+	if uncertain {
+		r.Uncertain += span
+	}
 	if heat >= 0 {
 		r.Given.Add(heat)
 	} else {
@@ -55,6 +60,7 @@ func (r *Registers) add(o *Minute, rate float64) {
 	r.Measured += o.Measured
 	r.Bridged += o.Bridged
 	r.Missing += o.Missing
+	r.Uncertain += o.Uncertain
 	r.Given.Add(o.Given * rate)
 	r.Taken.Add(o.Taken * rate)
 	r.BridgedGiven.Add(o.BridgedGiven * rate)

@@ -7,8 +7,9 @@ import (
 )
 
 // savedVersion is that of the states this program writes. Those of version 1 have no
-// undecided time and none of what came with it, and are read as such.
-const savedVersion = 2
+// undecided time and none of what came with it, those of version 2 no marks and no uncertain
+// time; they are read as such.
+const savedVersion = 3
 
 // saved is the engine's state by name, so that a plant whose site file has
 // gained or lost tags and loads keeps the accounts of the others.
@@ -103,6 +104,6 @@ func (e *Engine) SetRegisters(load int, t Totals) {
 	e.loads[load].Registers = Registers{
 		Given: Sum{Hi: t.Given}, Taken: Sum{Hi: t.Taken},
 		BridgedGiven: Sum{Hi: t.BridgedGiven}, BridgedTaken: Sum{Hi: t.BridgedTaken},
-		Measured: t.Measured, Bridged: t.Bridged, Missing: t.Missing,
+		Measured: t.Measured, Bridged: t.Bridged, Missing: t.Missing, Uncertain: t.Uncertain,
 	}
 }

@@ -1,6 +1,9 @@
 package loads
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Snapshot is what the engine knows at one instant; nothing changes it later.
 type Snapshot struct {
@@ -30,12 +33,16 @@ type Totals struct {
 	Given, Taken               float64
 	BridgedGiven, BridgedTaken float64
 	Measured, Bridged, Missing int64
+	Uncertain                  int64 // within Measured: an uncertain reading was used
 }
 
 // TagState is one tag in a [Snapshot].
 type TagState struct {
 	Newest int64 // stamp of the newest reading taken; 0 before the first
 	Tally
+	// Doubted counts the readings taken that have a mark, their source's or that of a test,
+	// by mark.
+	Doubted []Doubted
 }
 
 // Snapshot returns the present state.
@@ -51,6 +58,9 @@ func (e *Engine) Snapshot() Snapshot {
 	}
 	for i := range e.tags {
 		s.Tags[i] = TagState{Newest: e.tags[i].Newest, Tally: e.tally[i]}
+		if e.doubted != nil {
+			s.Tags[i].Doubted = slices.Clone(e.doubted[i])
+		}
 	}
 	return s
 }
@@ -90,6 +100,6 @@ func (r *Registers) totals() Totals {
 	return Totals{
 		Given: r.Given.Value(), Taken: r.Taken.Value(),
 		BridgedGiven: r.BridgedGiven.Value(), BridgedTaken: r.BridgedTaken.Value(),
-		Measured: r.Measured, Bridged: r.Bridged, Missing: r.Missing,
+		Measured: r.Measured, Bridged: r.Bridged, Missing: r.Missing, Uncertain: r.Uncertain,
 	}
 }

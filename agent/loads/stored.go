@@ -27,6 +27,7 @@ func (e *Engine) rise(load int, f *Figure, s *steps) bool {
 		s.x.Rise += line.Rate / 2
 		s.uRise = math.Hypot(s.uRise, line.uncertainty(tag)/2)
 		s.lines[i] = line
+		f.mark(t.mark(f.At, tag.OnChange), tag.Name)
 	}
 	return true
 }

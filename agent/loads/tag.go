@@ -3,6 +3,8 @@ package loads
 import (
 	"slices"
 	"sort"
+
+	"heatreeve/ingest/quality"
 )
 
 const (
@@ -24,7 +26,11 @@ const (
 type sample struct {
 	At    int64
 	Value float64
+	Mark  quality.Mark
 }
+
+// bad reports whether the reading says that there is no value.
+func (s *sample) bad() bool { return s.Mark.Quality() == quality.Bad }
 
 // tagState is what the engine keeps of one tag. Exported fields are part of the
 // engine's saved state.
@@ -99,7 +105,7 @@ func (t *tagState) remember(at int64) {
 // reach moves the readings stamped at or before g out of the wait and holds the
 // newest; it reports whether the held value changed. Those of a tag whose readings
 // scatter tell how far, from one that is not older than maxAge to the next; so every
-// reading counts that is held at a grid point, and no other.
+// reading counts that is held at a grid point, and no other, and of those no bad one.
 func (t *tagState) reach(g, maxAge int64, scatters bool) bool {
 	n := 0
 	for n < len(t.Pending) && t.Pending[n].At <= g {
@@ -112,7 +118,7 @@ func (t *tagState) reach(g, maxAge int64, scatters bool) bool {
 		if scatters {
 			t.Scatter.observe(t.Held, s, maxAge)
 		}
-		t.Held = held{At: s.At, Value: s.Value, Has: true}
+		t.Held = held{At: s.At, Value: s.Value, Has: true, Mark: s.Mark}
 	}
 	t.Pending = slices.Delete(t.Pending, 0, n)
 	return true

@@ -1,6 +1,10 @@
 package loads
 
-import "math"
+import (
+	"math"
+
+	"heatreeve/ingest/quality"
+)
 
 // trend is how the readings of one tag went of late: their means in parts of a span, so
 // that it takes the same room however often the tag reports.
@@ -20,6 +24,7 @@ type part struct {
 	Value    float64 // mean
 	Min, Max float64
 	Last     float64
+	Mark     quality.Mark // the worst of them
 }
 
 // newTrend returns the trend of a tag over a span; where the grid is coarser than a
@@ -48,6 +53,7 @@ func (c *trend) add(s sample, lapse int64) {
 	p.At += (float64(s.At-start)/1e9 - p.At) / p.N
 	p.Value += (s.Value - p.Value) / p.N
 	p.Min, p.Max, p.Last = min(p.Min, s.Value), max(p.Max, s.Value), s.Value
+	p.Mark = quality.Worse(p.Mark, s.Mark)
 }
 
 // forget drops the parts that lie before the span of which now is the last part, but for
@@ -66,6 +72,18 @@ func (c *trend) first(g int64) int64 { return floor(g, c.Width) - int64(c.count-
 
 // until returns when the span that ends at g moves on.
 func (c *trend) until(g int64) int64 { return floor(g, c.Width) + c.Width }
+
+// mark is the worst of the readings in the span that ends at g; where the tag reports by
+// exception, the one that stood when it began is one of them.
+func (c *trend) mark(g int64, onChange bool) (m quality.Mark) {
+	from := c.first(g)
+	for i := range c.Parts {
+		if c.Parts[i].Start >= from || onChange && (i+1 == len(c.Parts) || c.Parts[i+1].Start >= from) {
+			m = quality.Worse(m, c.Parts[i].Mark)
+		}
+	}
+	return m
+}
 
 // fit draws the line through the readings of the span that ends at g. Where the tag
 // reports by exception, a part without a reading counts, once it is over, as one reading
@@ -163,10 +181,17 @@ func (e *Engine) enlistTrends(load int) {
 	}
 }
 
-// follow adds the reading that the tag holds to the trends that it goes into.
+// follow adds the reading that the tag holds to the trends that it goes into, but for a bad
+// one. After that what a tag that reports by exception has told stands no more.
 func (e *Engine) follow(tag int) {
 	t := &e.tags[tag]
 	for _, f := range e.follows[tag] {
-		e.loads[f.load].Trends[f.trend].add(sample{t.Held.At, t.Held.Value}, t.Lapse)
+		c := &e.loads[f.load].Trends[f.trend]
+		switch {
+		case !t.Held.bad():
+			c.add(sample{t.Held.At, t.Held.Value, t.Held.Mark}, t.Lapse)
+		case e.cfg.Tags[tag].OnChange:
+			c.Parts = c.Parts[:0]
+		}
 	}
 }

@@ -95,6 +95,7 @@ func (e *Engine) vessel(load int, g int64, s *vesselSteps) Figure {
 	if why := l.moving(v, g); why != "" {
 		return f.fail(Moving, why)
 	}
+	f.mark(l.Trends[ofTemperature].mark(g, tag.OnChange), tag.Name)
 	x.Mean, x.Rate = s.line.Mean, s.line.Rate
 	d.Rate, d.Gain = s.line.uncertainty(tag), math.Abs(tag.Accuracy.Rel)/math.Sqrt(3)
 	return v.figure(f, &e.equations[load].declared, s)

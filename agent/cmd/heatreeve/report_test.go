@@ -63,7 +63,7 @@ func rich(by string, demand float64) *agent.Report {
 			Start: at(from), End: at(to), AccountedFrom: at(from), AccountedTo: at(to),
 			Given: 1.08e11, Taken: 3.6e9, BridgedGiven: 7.2e9, Uncertainty: 1.8e9, Systematic: 1.799e9, Random: 6e7, Expanded: 3.6e9,
 			Shares:   []agent.Share{{Part: "outlet pressure", Fraction: 0.62}, {Part: "heat capacity", Fraction: 0.3}, {Part: "matched pair", Fraction: 0.05}, {Part: "random", Fraction: 0.005}},
-			Measured: 80000, Bridged: 6000, Missing: 400, Latent: 7300, Coverage: 0.92, Mean: &mean, MeanU: &u,
+			Measured: 80000, Bridged: 6000, Missing: 400, Latent: 7300, Uncertain: 4321, Coverage: 0.92, Mean: &mean, MeanU: &u,
 			Lowest: &agent.Extreme{Duty: 1e3, Start: at(from), End: at(from + 1)}, Highest: &agent.Extreme{Duty: 6e5, Start: at(from), End: at(from + 1)},
 			Witness: &agent.Witness{Counted: 1.008e11, Served: 1.0206e11, Deviation: 0.0125},
 		}
@@ -92,9 +92,9 @@ func TestReportTableOfAllThereIs(t *testing.T) {
 			}
 			text := regexp.MustCompile(` +`).ReplaceAllString(b.String(), " ")
 			for _, want := range []string{
-				"\n bridged 1:40:00 2.0 0\n", "\n latent 2:01:40\n", " 30.0 1.0 1.0 92.0 % 0:06:40 480.0 ",
+				"\n bridged 1:40:00 2.0 0\n", "\n latent 2:01:40\n", "\n uncertain 1:12:01\n", " 30.0 1.0 1.0 92.0 % 0:06:40 480.0 ",
 				" counted served deviation\n MWh MWh\n", " 28.0 28.4 +1.25 %\n", "\nuncertainty ±2u systematic random shares\n",
-				" 1.00 1.00 0.03 outlet pressure 62 %, heat capacity 30 %\n", "; bridged 4.0 MWh given, 0 MWh taken.", "\nBridged: ", "\nLatent: ", "\nWitness: ", "\nShares: ",
+				" 1.00 1.00 0.03 outlet pressure 62 %, heat capacity 30 %\n", "; bridged 4.0 MWh given, 0 MWh taken.", "\nBridged: ", "\nLatent: ", "\nUncertain: ", "\nWitness: ", "\nShares: ",
 				"\nWhat happened:\n 2026-10-24 05:00 +01:00, started: heatreeve 1.0\n 2026-10-24 05:00 +01:00 to 2026-10-24 07:00 +01:00, disk: the disk took", "\n 2026-10-24 07:00 +01:00 on, silent of TT-1: no reading\n",
 			} {
 				if !strings.Contains(text, want) {
@@ -125,7 +125,7 @@ func TestReportCSVOfAllThereIs(t *testing.T) {
 		t.Fatalf("%d records, %v", len(records), err)
 	}
 	for name, want := range map[string]string{
-		"given_kWh": "30000", "bridged_given_kWh": "2000", "bridged_taken_kWh": "0", "bridged_s": "6000", "latent_s": "7300",
+		"given_kWh": "30000", "bridged_given_kWh": "2000", "bridged_taken_kWh": "0", "bridged_s": "6000", "latent_s": "7300", "uncertain_s": "4321",
 		"expanded_uncertainty_kWh": "1000", "systematic_expanded_uncertainty_kWh": "999.4444444444445", "random_expanded_uncertainty_kWh": "33.333333333333336",
 		"witness_counted_kWh": "28000", "witness_served_kWh": "28350", "witness_deviation": "0.0125",
 		"share_outlet_pressure": "0.62", "share_heat_capacity": "0.3", "share_random": "0.005", "share_flow": "0", "share_not_told_apart": "0",

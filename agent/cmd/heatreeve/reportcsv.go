@@ -20,7 +20,7 @@ var reportHeader = []string{
 	"lowest_duty_kW", "lowest_start", "lowest_end", "highest_duty_kW", "highest_start", "highest_end",
 	"peak_demand_kW", "peak_demand_start", "peak_demand_end", "peak_demand_coverage",
 	"demand_windows", "demand_windows_covered_throughout",
-	"bridged_given_kWh", "bridged_taken_kWh", "latent_s",
+	"bridged_given_kWh", "bridged_taken_kWh", "latent_s", "uncertain_s",
 	"systematic_expanded_uncertainty_kWh", "random_expanded_uncertainty_kWh",
 	"witness_counted_kWh", "witness_served_kWh", "witness_deviation",
 }
@@ -75,7 +75,7 @@ func reportRecord(load string, p *agent.PeriodReport) []string {
 			field(p.Highest.Duty/1e3), instantField(p.Highest.Start), instantField(p.Highest.End))
 	}
 	fields = append(append(fields, demandFields(p.Demand)...),
-		energyField(p.BridgedGiven), energyField(p.BridgedTaken), field(p.Latent),
+		energyField(p.BridgedGiven), energyField(p.BridgedTaken), field(p.Latent), field(p.Uncertain),
 		energyField(agent.CoverageFactor*p.Systematic), energyField(agent.CoverageFactor*p.Random))
 	if p.Witness == nil {
 		return append(fields, "", "", "")

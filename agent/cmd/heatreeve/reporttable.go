@@ -22,6 +22,7 @@ Missing time has no heat in it. Mean duty: over the covered time, positive in th
 	peakLegend    = "Peak: heat over time of the highest %.0f min by the local clock; of it: the covered part of that.\n"
 	bridgedLegend = "Bridged: heat by a straight line over time without data; it is in no other figure.\n"
 	latentLegend  = "Latent: covered time whose duty is the sensible part only.\n"
+	doubtLegend   = "Uncertain: covered time for which an uncertain reading was used; its heat is in all figures.\n"
 	witnessLegend = "Witness: what another meter counted, and the load served in the spans that were measured throughout.\n"
 	sharesLegend  = "Shares: of the variance, largest first. What is systematic lasts; what is random averages out.\n"
 	reportSafety  = "For information only: no billing meter.\n"
@@ -67,7 +68,7 @@ func legend(r *agent.Report, d details) string {
 	for _, more := range []struct {
 		shown bool
 		text  string
-	}{{anyHas(r, hasBridged), bridgedLegend}, {anyHas(r, hasLatent), latentLegend}, {anyHas(r, hasWitness), witnessLegend}, {d.shares, sharesLegend}} {
+	}{{anyHas(r, hasBridged), bridgedLegend}, {anyHas(r, hasLatent), latentLegend}, {anyHas(r, hasDoubt), doubtLegend}, {anyHas(r, hasWitness), witnessLegend}, {d.shares, sharesLegend}} {
 		if more.shown {
 			text += more.text
 		}
@@ -77,6 +78,7 @@ func legend(r *agent.Report, d details) string {
 
 func hasBridged(p *agent.PeriodReport) bool { return p.Bridged > 0 }
 func hasLatent(p *agent.PeriodReport) bool  { return p.Latent > 0 }
+func hasDoubt(p *agent.PeriodReport) bool   { return p.Uncertain > 0 }
 func hasWitness(p *agent.PeriodReport) bool { return p.Witness != nil }
 
 // anyHas tells whether any load of the report has something.
@@ -127,7 +129,7 @@ func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
 	s.width = nameWidths[r.By]
 	var heats, duties []float64
 	for _, p := range append(l.Periods, l.Total) {
-		s.width = max(s.width, len(bridgedName(&p)), len(latentName(&p)))
+		s.width = max(s.width, len(bridgedName(&p)), len(latentName(&p)), len(doubtName(&p)))
 		if p.MeanU != nil && *p.MeanU > 0 {
 			heats, duties = append(heats, p.Expanded/s.energy), append(duties, agent.CoverageFactor**p.MeanU/1e3)
 		}
@@ -167,7 +169,8 @@ func flushLeft(t *columns) string {
 	return lines.String()
 }
 
-// apart adds a line for the bridged time, and one for the latent, where there is any.
+// apart adds a line for the bridged time, and one each for the latent and the uncertain,
+// where there is any.
 func (s *sheet) apart(t *columns, p *agent.PeriodReport) {
 	empty := make([]string, s.columns()-3)
 	if hasBridged(p) {
@@ -176,11 +179,16 @@ func (s *sheet) apart(t *columns, p *agent.PeriodReport) {
 	if hasLatent(p) {
 		t.line(append([]string{s.pad(latentName(p)), "", ""}, empty...)...)
 	}
+	if hasDoubt(p) {
+		t.line(append([]string{s.pad(doubtName(p)), "", ""}, empty...)...)
+	}
 }
 
 func bridgedName(p *agent.PeriodReport) string { return "  bridged " + clockLength(p.Bridged) }
 
 func latentName(p *agent.PeriodReport) string { return "  latent " + clockLength(p.Latent) }
+
+func doubtName(p *agent.PeriodReport) string { return "  uncertain " + clockLength(p.Uncertain) }
 
 // columns is how many the main table has.
 func (s *sheet) columns() int {
