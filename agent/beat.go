@@ -137,7 +137,7 @@ func (a *Agent) goOn(r *rhythm) {
 	a.put(r)
 	r.hold.inMemory, r.books.forced = true, true
 	a.session.Ack(r.unacked)
-	r.unacked = r.unacked[:0]
+	r.unacked = emptied(r.unacked)
 	r.window.failed()
 }
 
@@ -197,7 +197,7 @@ func (a *Agent) put(r *rhythm) {
 		}
 		r.shifted = shifted
 	}
-	r.received = a.session.Take(r.received[:0])
+	r.received = a.session.Take(emptied(r.received))
 	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
 	for rest := r.received; ; {
 		piece := rest[:min(len(rest), pieceReadings)]
@@ -207,6 +207,16 @@ func (a *Agent) put(r *rhythm) {
 			return
 		}
 	}
+}
+
+// emptied returns s to be filled again. It holds nothing any more, nor, unless it was
+// filled to a quarter, room for thousands that a burst once took.
+func emptied[T any](s []T) []T {
+	if cap(s) > 4*max(len(s), pieceReadings) {
+		return nil
+	}
+	clear(s)
+	return s[:0]
 }
 
 // account puts a piece through the accounts, once they have room for it.
@@ -262,6 +272,6 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 	a.session.Ack(r.unacked)
 	r.rate.note(max(0, waiting-a.session.Waiting()), system)
 	r.window.committed(waiting)
-	r.unacked = r.unacked[:0]
+	r.unacked = emptied(r.unacked)
 	return true
 }

@@ -349,7 +349,7 @@ func (l *ledger) commit(now time.Time, checkpoint bool) error {
 	l.committed, l.booked, l.fault, l.waiting = registers, through, "", 0
 	l.through.Store(through)
 	l.told()
-	l.batch.Beats, l.batch.Minutes, l.batch.Site = l.batch.Beats[:0], l.batch.Minutes[:0], nil
+	l.batch.Beats, l.batch.Minutes, l.batch.Site = emptied(l.batch.Beats), emptied(l.batch.Minutes), nil
 	return nil
 }
 

@@ -155,6 +155,9 @@ func (b *inbox) take(buf []Received) (_ []Received, left bool) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	buf = append(buf, b.readings...)
+	if cap(b.readings) > 4*max(len(b.readings), together) {
+		b.readings = nil // a burst of long ago
+	}
 	clear(b.readings)
 	b.readings = b.readings[:0]
 	b.crowded = false

@@ -161,3 +161,18 @@ func TestReachedTells(t *testing.T) {
 		t.Error("told though one waits")
 	}
 }
+
+// Room for a burst is given back once it is not filled any more.
+func TestRoomOfABurstIsGivenBack(t *testing.T) {
+	b := newInbox(100_000, time.Second)
+	for range 20 * together {
+		put(t, b, nil, 1)
+	}
+	if batch, _ := b.take(nil); len(batch) != 20*together || cap(b.readings) < 20*together {
+		t.Fatalf("took %d, room for %d; want %d and the room kept", len(batch), cap(b.readings), 20*together)
+	}
+	put(t, b, nil, 1)
+	if batch, _ := b.take(nil); len(batch) != 1 || cap(b.readings) > 4*together {
+		t.Errorf("took %d, room for %d left; want 1, and %d at most", len(batch), cap(b.readings), 4*together)
+	}
+}
