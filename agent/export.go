@@ -20,7 +20,7 @@ type export struct {
 	db       *store.Store
 	what     string // as in "reading of tag ..."
 	id       uint32
-	minutes  bool // of a load, rather than readings of a tag
+	of       string // reading of a tag, or minute or hour of a load
 	json     bool
 	columns  []string
 	from, to int64
@@ -42,10 +42,7 @@ func minuteColumns() []string {
 		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "uncertain_s", "witness_counted_J", "witness_served_J",
 		"random_variance_J2",
 	}
-	for p := range loads.Parts {
-		columns = append(columns, "systematic_"+strings.ReplaceAll(p.String(), " ", "_")+"_J")
-	}
-	return columns
+	return append(columns, systematicColumns()...)
 }
 
 const (
@@ -72,18 +69,24 @@ func (h *history) export(s Selection) (*export, error) {
 	if s.Format == parquetFormat {
 		return nil, queryErrorf("format %q: the agent's page gives csv and json; heatreeve export makes parquet of it", s.Format)
 	}
-	x := &export{db: h.db, minutes: s.Load != "", json: s.Format == "json", through: h.through(), zone: time.UTC}
+	x := &export{db: h.db, of: s.of(), json: s.Format == "json", through: h.through(), zone: time.UTC}
 	if h.zone != nil {
 		x.zone = h.zone
 	}
-	kind, name, of := "tag", s.Tag, "reading"
-	if x.columns = []string{"time", valueColumn(h.units[s.Tag]), truthColumn, qualityColumn, reasonColumn}; x.minutes {
-		kind, name, of, x.columns = "load", s.Load, "minute", minuteColumns()
+	kind, name := "load", s.Load
+	switch x.of {
+	case ofReading:
+		kind, name = "tag", s.Tag
+		x.columns = []string{"time", valueColumn(h.units[name]), truthColumn, qualityColumn, reasonColumn}
+		if h.units[name] == changedUnit {
+			x.note = fmt.Sprintf("tag %q has not always measured the same: the unit of its values changed with the site file", name)
+		}
+	case ofMinute:
+		x.columns = minuteColumns()
+	case ofHour:
+		x.columns = hourColumns()
 	}
-	if !x.minutes && h.units[s.Tag] == changedUnit {
-		x.note = fmt.Sprintf("tag %q has not always measured the same: the unit of its values changed with the site file", s.Tag)
-	}
-	x.what = fmt.Sprintf("%s of %s %q", of, kind, name)
+	x.what = fmt.Sprintf("%s of %s %q", x.of, kind, name)
 	ids, err := h.db.Names(kind)
 	if err != nil {
 		return nil, err
@@ -104,10 +107,13 @@ func (x *export) until() time.Time { return time.Unix(0, min(x.to, x.through)).U
 func (x *export) write(ctx context.Context, w io.Writer) error {
 	r := newRows(w, x.json, x.columns)
 	var err error
-	if x.minutes {
-		err = each(ctx, x, r, x.db.Minutes(x.id, x.from, x.to), minuteRow)
-	} else {
+	switch x.of {
+	case ofReading:
 		err = each(ctx, x, r, x.db.Readings(x.id, x.from, x.to), readingRow)
+	case ofMinute:
+		err = each(ctx, x, r, x.db.Minutes(x.id, x.from, x.to), minuteRow)
+	case ofHour:
+		err = each(ctx, x, r, x.db.Hours(x.id, x.from, x.to), hourRow)
 	}
 	err = errors.Join(err, r.flush())
 	switch x.rows = r.count; {

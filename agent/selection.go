@@ -10,9 +10,10 @@ import (
 )
 
 // Selection says what of a history is to be exported: the readings of a tag, or the minute
-// records of a load.
+// or hour records of a load.
 type Selection struct {
 	Tag, Load string // one of the two
+	By        string // minute or hour, of a load; empty is minute
 	// From and To are instants as [account.Instant] reads them; empty is as far as the
 	// history goes. To is not in the export any more.
 	From, To string
@@ -32,7 +33,7 @@ func (s Selection) values() url.Values {
 }
 
 func (s *Selection) fields() map[string]*string {
-	return map[string]*string{"tag": &s.Tag, "load": &s.Load, "from": &s.From, "to": &s.To, "zone": &s.Zone, "format": &s.Format}
+	return map[string]*string{"tag": &s.Tag, "load": &s.Load, "by": &s.By, "from": &s.From, "to": &s.To, "zone": &s.Zone, "format": &s.Format}
 }
 
 // selectionOf reads the parameters back.
@@ -41,7 +42,7 @@ func selectionOf(v url.Values) (s Selection, err error) {
 	for name, texts := range v {
 		switch field := fields[name]; {
 		case field == nil:
-			return s, queryErrorf("%s is no parameter; known: tag, load, from, to, zone, format", name)
+			return s, queryErrorf("%s is no parameter; known: tag, load, by, from, to, zone, format", name)
 		case len(texts) != 1:
 			return s, queryErrorf("%s is given %d times", name, len(texts))
 		default:
@@ -58,10 +59,31 @@ func (s *Selection) check() error {
 		return queryErrorf("tag or load must be given")
 	case s.Tag != "" && s.Load != "":
 		return queryErrorf("tag %q and load %q: an export is of one of them", s.Tag, s.Load)
+	case s.Tag != "" && s.By != "":
+		return queryErrorf("by %q: readings are exported one by one; only the records of a load are by minute or by hour", s.By)
+	case !slices.Contains([]string{"", ofMinute, ofHour}, s.By):
+		return queryErrorf("by %q: allowed are minute, hour", s.By)
 	case !slices.Contains([]string{"", "csv", "json", parquetFormat}, s.Format):
 		return queryErrorf("format %q: allowed are csv, json, parquet", s.Format)
 	}
 	return nil
+}
+
+// What an export is of.
+const (
+	ofReading = "reading"
+	ofMinute  = "minute"
+	ofHour    = "hour"
+)
+
+func (s *Selection) of() string {
+	switch {
+	case s.Tag != "":
+		return ofReading
+	case s.By == ofHour:
+		return ofHour
+	}
+	return ofMinute
 }
 
 // span is the time that is asked for, own being the zone of the history.

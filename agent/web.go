@@ -66,7 +66,7 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 		}
 		fmt.Fprint(w, "\n±: twice the standard uncertainty\n\n")
 	}
-	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/export   readings of a tag or minutes of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
+	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
 }
 
 // answer turns a list of what is wrong into 200 or 503, a line a fault.

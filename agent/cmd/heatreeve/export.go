@@ -16,8 +16,8 @@ time is their event time, stamped tells whether it came with the value rather
 than from the clock at arrival, and the value is in SI, with its unit in its
 name: K, Pa absolute, kg/s, m3/s, m3, J and the like; value_SI where there is
 none, or where a tag has not always had the same, which a note on stderr tells.
-Minutes of a load come in the order of time; means are empty where nothing was
-measured. All times are UTC. csv (RFC 4180) has its units in the header; json is
+Minutes and hours of a load come in the order of time; means are empty where
+nothing was measured. An hour is by UTC, and outlives its minutes. All times are UTC. csv (RFC 4180) has its units in the header; json is
 an object a line; parquet has the same columns, with the time in ns, compressed
 with gzip, and goes to a file or a pipe.
 
@@ -32,7 +32,8 @@ func runExport(ctx context.Context, c *call) error {
 	var s agent.Selection
 	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
 	c.flags.StringVar(&s.Tag, "tag", "", "`NAME` of the tag whose readings to export")
-	c.flags.StringVar(&s.Load, "load", "", "`NAME` of the load whose minutes to export")
+	c.flags.StringVar(&s.Load, "load", "", "`NAME` of the load whose minutes or hours to export")
+	c.flags.StringVar(&s.By, "by", "", "`minute|hour`: the records of the load; minute unless given")
 	c.flags.StringVar(&s.From, "from", "", "`DATE` at which the export begins; without it, where the history does")
 	c.flags.StringVar(&s.To, "to", "", "`DATE` at which it ends, not in it any more; without it, where the history does")
 	c.flags.StringVar(&s.Format, "format", "csv", "`csv|json|parquet`")

@@ -120,6 +120,8 @@ func TestExportRefusals(t *testing.T) {
 		{"--data " + data, exitWrong, "--data and --tag or --load must be given"},
 		{"--data " + data + " --tag TT-201 extra", exitWrong, `unexpected "extra"`},
 		{"--data " + data + " --tag TT-201 --load hot-water", exitWrong, `--tag "TT-201" and load "hot-water": an export is of one of them`},
+		{"--data " + data + " --tag TT-201 --by hour", exitWrong, `--by "hour": readings are exported one by one`},
+		{"--data " + data + " --load hot-water --by day", exitWrong, `--by "day": allowed are minute, hour`},
 		{"--data " + data + " --tag TT-201 --format orc", exitWrong, `heatreeve export: --format "orc": allowed are csv, json, parquet`},
 		{"--data " + data + " --tag TT-210", exitWrong, `--tag "TT-210" is not in the history; did you mean "TT-201"?`},
 		{"--data " + data + " --load hot-watre", exitWrong, `--load "hot-watre" is not in the history; did you mean "hot-water"?`},
@@ -164,6 +166,59 @@ func TestReadmeNamesTheMinuteColumns(t *testing.T) {
 	slices.Sort(have)
 	if status != exitGood || !slices.Equal(said, have) {
 		t.Errorf("status %d, %s: the program has %v,\nthe README tells %v", status, errs, have, said)
+	}
+}
+
+// The columns of an hour that the README tells are those that there are: a minute's but for some.
+func TestReadmeNamesTheHourColumns(t *testing.T) {
+	_, rest, ok := strings.Cut(strings.Join(strings.Fields(readme(t)), " "), "Its columns are those of a minute but for ")
+	list, _, closed := strings.Cut(rest, "The hour under way")
+	if !ok || !closed {
+		t.Fatal("the README tells no columns")
+	}
+	header := func(by string) []string {
+		status, text, errs := export("--data", keep(t), "--load", "hot-water", "--to", "2026-10-24T01:00", "--by", by)
+		if status != exitGood {
+			t.Fatalf("status %d, %s", status, errs)
+		}
+		names, _, _ := strings.Cut(text, "\r\n")
+		return strings.Split(names, ",")
+	}
+	minute, hour := header("minute"), header("hour")
+	for _, name := range hour {
+		if told := strings.Contains(list, "`"+name+"`"); !slices.Contains(minute, name) && !told {
+			t.Errorf("the README does not tell %s", name)
+		}
+	}
+	for _, name := range minute {
+		if told := strings.Contains(list, "for `"+name+"`"); slices.Contains(hour, name) == told {
+			t.Errorf("%s of a minute: in an hour %v, and told to be left out %v", name, slices.Contains(hour, name), told)
+		}
+	}
+}
+
+// Hours and minutes of a load add up to the same, and to what the report says; the
+// report's uncertainty of an hour is that of the export.
+func TestExportOfHoursAgainstReport(t *testing.T) {
+	data := keep(t)
+	span := []string{"--data", data, "--from", "2026-10-24T02:00Z", "--to", "2026-10-25T02:00Z", "--load", "hot-water"}
+	_, text, _ := report(t, append(span, "--by", "hour", "--format", "json")...)
+	var r agent.Report
+	if err := json.Unmarshal([]byte(text), &r); err != nil {
+		t.Fatal(err)
+	}
+	status, text, errs := export(append(span, "--by", "hour")...)
+	if status != exitGood || errs != "" {
+		t.Fatalf("status %d, %s", status, errs)
+	}
+	given, u, measured := column(t, text, "given_J"), column(t, text, "uncertainty_J"), column(t, text, "measured_s")
+	if len(given) != 24 || len(r.Loads[0].Periods) != 24 {
+		t.Fatalf("%d hours, and the report has %d; want 24", len(given), len(r.Loads[0].Periods))
+	}
+	for i, p := range r.Loads[0].Periods {
+		if math.Abs(given[i]-p.Given) > 1e-9*p.Given || math.Abs(u[i]-p.Uncertainty) > 1e-9*p.Uncertainty || measured[i] != p.Measured || !(p.Given > 0 && p.Uncertainty > 0) {
+			t.Errorf("hour %d: %v J ± %v in %v s, the report says %v ± %v in %v", i, given[i], u[i], measured[i], p.Given, p.Uncertainty, p.Measured)
+		}
 	}
 }
 
