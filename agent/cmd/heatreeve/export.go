@@ -17,9 +17,10 @@ than from the clock at arrival, and the value is in SI, with its unit in its
 name: K, Pa absolute, kg/s, m3/s, m3, J and the like; value_SI where there is
 none, or where a tag has not always had the same, which a note on stderr tells.
 Minutes and hours of a load come in the order of time; means are empty where
-nothing was measured. An hour is by UTC, and outlives its minutes. All times are UTC. csv (RFC 4180) has its units in the header; json is
-an object a line; parquet has the same columns, with the time in ns, compressed
-with gzip, and goes to a file or a pipe.
+nothing was measured. An hour is by UTC, and outlives its minutes. All times are
+UTC. csv (RFC 4180) has its units in the header; json is an object a line;
+parquet has the same columns, with the time in ns, compressed with gzip, and
+goes to a file or a pipe.
 
 DATE is written as for a report; by whose clock, --zone tells. The data folder
 may be that of an agent that runs: it gives the rows out, and goes on
