@@ -121,31 +121,7 @@ func (j *Judge) Verdict(blind, idle bool) Verdict {
 	return j.Last
 }
 
-func (j *Judge) decide() Verdict {
-	if j.target.Duty == 0 || len(j.Minutes) < j.lasting {
-		return Undecided
-	}
-	s, whole := summarise(j.Minutes)
-	if !whole {
-		return Undecided
-	}
-	a := j.target.Allow * j.target.Duty
-	d, U := s.mean-j.target.Duty, 2*s.uncertainty
-	steady := s.most-s.least <= a
-	switch {
-	case !steady:
-		return Undecided
-	case s.most < j.target.Duty-a && math.Abs(d) > U:
-		return Short
-	case s.least > j.target.Duty+a && math.Abs(d) > U:
-		return Over
-	case U >= a:
-		return Undecided
-	case s.least >= j.target.Duty-a && s.most <= j.target.Duty+a:
-		return Holding
-	}
-	return j.Last
-}
+func (j *Judge) decide() Verdict { return j.Grounds().Verdict }
 
 type summary struct{ mean, uncertainty, least, most float64 }
 

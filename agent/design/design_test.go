@@ -23,24 +23,28 @@ func TestVerdicts(t *testing.T) {
 		u    float64
 		kW   []float64
 		want Verdict
+		by   Ground
 	}{
-		{"at design", 8, []float64{640, 645, 638, 641, 640}, Holding},
-		{"at the edge of the allowance", 8, []float64{590, 592, 591, 590, 590}, Holding},
-		{"too few minutes", 8, []float64{500, 500, 500, 500}, Undecided},
-		{"low for long enough", 8, []float64{560, 558, 561, 559, 560}, Short},
-		{"high for long enough", 8, []float64{720, 721, 719, 720, 720}, Over},
-		{"low but not for the whole time", 8, []float64{590, 560, 561, 559, 560}, Undecided},
-		{"low by less than the uncertainty", 45, []float64{560, 558, 561, 559, 560}, Undecided},
-		{"low by more than an uncertainty as wide as the allowance", 30, []float64{500, 501, 499, 500, 500}, Short},
-		{"at design with an uncertainty as wide as the allowance", 26, []float64{640, 641, 640, 639, 640}, Undecided},
-		{"a ramp is not steady", 8, []float64{300, 350, 400, 450, 500}, Undecided},
-		{"a minute missing", 8, []float64{560, 558, -1, 559, 560}, Undecided},
+		{"at design", 8, []float64{640, 645, 638, 641, 640}, Holding, Within},
+		{"at the edge of the allowance", 8, []float64{590, 592, 591, 590, 590}, Holding, Within},
+		{"too few minutes", 8, []float64{500, 500, 500, 500}, Undecided, TooFew},
+		{"low for long enough", 8, []float64{560, 558, 561, 559, 560}, Short, Beyond},
+		{"high for long enough", 8, []float64{720, 721, 719, 720, 720}, Over, Beyond},
+		{"low but not for the whole time", 8, []float64{590, 560, 561, 559, 560}, Undecided, Between},
+		{"low by less than the uncertainty", 45, []float64{560, 558, 561, 559, 560}, Undecided, TooUnsure},
+		{"low by more than an uncertainty as wide as the allowance", 30, []float64{500, 501, 499, 500, 500}, Short, Beyond},
+		{"at design with an uncertainty as wide as the allowance", 26, []float64{640, 641, 640, 639, 640}, Undecided, TooUnsure},
+		{"a ramp is not steady", 8, []float64{300, 350, 400, 450, 500}, Undecided, Unsteady},
+		{"a minute missing", 8, []float64{560, 558, -1, 559, 560}, Undecided, NotWhole},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
 			j := NewJudge(target)
 			course(j, 0, tt.u, tt.kW...)
 			if got := j.Verdict(false, false); got != tt.want {
 				t.Errorf("verdict %v, want %v", got, tt.want)
+			}
+			if g := j.Grounds(); g.Verdict != tt.want || g.Ground != tt.by {
+				t.Errorf("grounds %+v, want %v by %d", g, tt.want, tt.by)
 			}
 		})
 	}
