@@ -35,6 +35,7 @@ func (s *Session) connected(ctx context.Context, c mqtt.Client) {
 	}
 	if err == nil {
 		s.greet()
+		s.decoder.plug.askAll(s.o.Now().UnixNano())
 	}
 }
 

@@ -29,8 +29,8 @@ type Outcome struct {
 }
 
 // Decoder turns payloads into readings. It has no clock and keeps nothing from
-// one message to the next but its working memory, so it serves one goroutine at
-// a time. An accepted reading allocates nothing.
+// one message to the next but its working memory and what Sparkplug births have told,
+// so it serves one goroutine at a time. An accepted reading allocates nothing.
 type Decoder struct {
 	tags   []Tag
 	topics map[string]*topic
@@ -40,6 +40,8 @@ type Decoder struct {
 	json     jsontext.Decoder
 	found    []found
 	elements []found // of all lists of samples, a stretch each
+
+	plug *plug // nil without a tag that reads a metric
 }
 
 // topic is what the messages of one topic are searched for.
@@ -92,6 +94,10 @@ func NewDecoder(tags []Tag, ahead time.Duration) (*Decoder, error) {
 			faults = append(faults, err)
 			continue
 		}
+		if tag.Metric != nil {
+			faults = append(faults, d.plugIn(i, tag))
+			continue
+		}
 		d.add(i, tag)
 	}
 	slots := 0
@@ -104,6 +110,7 @@ func NewDecoder(tags []Tag, ahead time.Duration) (*Decoder, error) {
 	if err := errors.Join(faults...); err != nil {
 		return nil, err
 	}
+	d.plug.start(ahead, nil)
 	d.found = make([]found, slots)
 	return d, nil
 }
@@ -154,7 +161,7 @@ func (t *topic) slot(pointer string) int {
 func (d *Decoder) Decode(topic string, payload []byte, arrival int64, retained bool, out []Outcome) ([]Outcome, bool) {
 	t := d.topics[topic]
 	if t == nil {
-		return out, false
+		return d.plug.decode(topic, payload, arrival, retained, out)
 	}
 	m := arrived{payload, arrival, retained}
 	whole := d.open(t, payload)
@@ -232,25 +239,35 @@ func (d *Decoder) read(r *Reading, w *wanted, at []found, m *arrived) *fault {
 	if f := d.stamp(r, tag, w, at, m); f != nil {
 		return f
 	}
-	if r.Mark.Quality() != quality.Bad && !(r.Value >= tag.Min && r.Value <= tag.Max) {
-		return faultf(OutOfRange, "holds %v, in SI units %.6g, outside the instrument's range %.6g to %.6g; check the instrument, its unit and its range", x, r.Value, tag.Min, tag.Max)
+	return tag.inRange(r, x)
+}
+
+// inRange holds a reading that is not bad to the instrument's range.
+func (t *Tag) inRange(r *Reading, x float64) *fault {
+	if r.Mark.Quality() != quality.Bad && !(r.Value >= t.Min && r.Value <= t.Max) {
+		return faultf(OutOfRange, "holds %v, in SI units %.6g, outside the instrument's range %.6g to %.6g; check the instrument, its unit and its range", x, r.Value, t.Min, t.Max)
 	}
 	return nil
 }
 
 // convert puts x into SI. What is bad needs no unit, and no value.
 func (d *Decoder) convert(r *Reading, tag *Tag, w *wanted, x float64) *fault {
-	bad := r.Mark.Quality() == quality.Bad
-	if w.unit >= 0 && !bad {
+	if w.unit >= 0 && r.Mark.Quality() != quality.Bad {
 		if f := tag.unit(w, &d.found[w.unit]); f != nil {
 			return f
 		}
 	}
-	if tag.Signal == nil {
-		r.Value = tag.Scale*x + tag.Offset
+	return tag.inSI(r, x)
+}
+
+// inSI fills in what x means.
+func (t *Tag) inSI(r *Reading, x float64) *fault {
+	bad := r.Mark.Quality() == quality.Bad
+	if t.Signal == nil {
+		r.Value = t.Scale*x + t.Offset
 	} else {
 		var m quality.Mark
-		r.Value, m = tag.Signal.Convert(x)
+		r.Value, m = t.Signal.Convert(x)
 		r.Mark = quality.Worse(r.Mark, m)
 		bad = bad || m.Quality() == quality.Bad
 	}

@@ -13,7 +13,7 @@ import (
 const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 
 // inflow takes the messages out of a stream of MQTT packets (MQTT 3.1.1, section
-// 2.2), and passes the other packets on. It cuts a PUBLISH beyond maxPacket, which
+// 2.2), and passes the other packets on. It cuts a PUBLISH beyond the longest, which
 // may announce 256 MiB, so that it is delivered with a payload too large and can be
 // refused and acknowledged; otherwise it would come again at every reconnection.
 // The first packet is passed on whatever it is: the library judges it.
@@ -23,6 +23,7 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
+	most    int         // bytes of a body that are read; 0: maxPacket
 	message delivery    // at hand
 	begun   bool        // the first packet has come
 	probed  atomic.Bool // the library waits for an answer
@@ -65,8 +66,8 @@ func (f *inflow) next() error {
 		return err
 	case first>>4 == publish && f.begun:
 		return f.take(first, length)
-	case length > maxPacket:
-		return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", first>>4, length, maxPacket)
+	case length > f.longest():
+		return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", first>>4, length, f.longest())
 	}
 	f.begun = true
 	f.body = length
@@ -74,9 +75,11 @@ func (f *inflow) next() error {
 	return nil
 }
 
+func (f *inflow) longest() int { return max(f.most, maxPacket) }
+
 // take delivers a message, which lies in the buffer of the reader where it fits.
 func (f *inflow) take(first byte, length int) error {
-	kept := min(length, maxPacket)
+	kept := min(length, f.longest())
 	rest := length
 	body, err := f.r.Peek(kept)
 	if errors.Is(err, bufio.ErrBufferFull) {

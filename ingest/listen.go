@@ -10,7 +10,7 @@ import (
 // Heard is a message as the broker delivered it.
 type Heard struct {
 	Topic    string
-	Payload  []byte // good until the handler returns; cut one byte beyond [MaxPayload]
+	Payload  []byte // good until the handler returns; cut one byte beyond [sparkplug.MaxPayload]
 	Retained bool
 	At       int64
 }
@@ -32,7 +32,7 @@ func Listen(ctx context.Context, o Options, filters []string, hear func(Heard)) 
 	ctx, end := context.WithCancelCause(ctx)
 	defer end(nil)
 	o.Transient = true
-	s := &Session{o: o, broker: b, strays: newStrays(), inbox: newInbox(0, 0), outbox: newOutbox(o.Outbox), tally: newTally(0)}
+	s := &Session{o: o, broker: b, decoder: &Decoder{}, strays: newStrays(), inbox: newInbox(0, 0), outbox: newOutbox(o.Outbox), tally: newTally(0)}
 	s.listening = &listening{
 		hear: hear,
 		refused: func(why string) {

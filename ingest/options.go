@@ -6,6 +6,8 @@ import (
 	"fmt"
 	"log/slog"
 	"time"
+
+	"heatreeve/ingest/sparkplug"
 )
 
 // Defaults of [Options].
@@ -55,6 +57,12 @@ type Options struct {
 	// they were away: those of a command that listens for a while. The first attempt to
 	// connect is not repeated.
 	Transient bool
+	// Rebirths says that Sparkplug edge nodes may be asked for their births, where these
+	// are missing. Without it nothing is sent to them.
+	Rebirths bool
+	// Host is the id of this Sparkplug host application. Its STATE is then the presence, and
+	// the broker keeps nothing for it while it is away, as the standard wants; "": it is none.
+	Host string
 
 	Presence *Presence // nil: none, and no will
 	Outbox   int       // messages held until published; 0: DefaultOutbox
@@ -92,6 +100,15 @@ func (o Options) withDefaults() (Options, error) {
 	}
 	if o.Password != nil && o.Username == "" {
 		faults = append(faults, errors.New("a password without a user name"))
+	}
+	if o.Host != "" {
+		if err := sparkplug.CheckHost(o.Host); err != nil {
+			faults = append(faults, err)
+		}
+		if o.Presence != nil {
+			faults = append(faults, fmt.Errorf("host %q and a presence on %q: a connection has one will, and the host's STATE is it", o.Host, o.Presence.Topic))
+		}
+		o.Presence = HostPresence(o.Host)
 	}
 	if err := o.Presence.check(); err != nil {
 		faults = append(faults, err)

@@ -11,8 +11,8 @@ import (
 // broker publishes when the connection dies, and is published at a clean end too: a
 // goodbye takes the will back (MQTT 3.1.1, section 3.14.4).
 //
-// Both are asked at each attempt to connect, with the same instant. All that Offline
-// returns must be of one length.
+// Both are asked at each attempt to connect, with the same instant, and Offline at a
+// clean end. All that Offline returns must be of one length.
 type Presence struct {
 	Topic           string
 	Online, Offline func(at time.Time) []byte
@@ -51,7 +51,6 @@ func (s *Session) online() Message {
 	return Message{Topic: s.o.Presence.Topic, Payload: s.o.Presence.Online(s.presented), QoS: 1, Retain: true}
 }
 
-// offline copies the will, for the library holds on to it.
 func (s *Session) offline() Message {
-	return Message{Topic: s.o.Presence.Topic, Payload: append([]byte(nil), s.will...), QoS: 1, Retain: true}
+	return Message{Topic: s.o.Presence.Topic, Payload: s.o.Presence.Offline(s.o.Now()), QoS: 1, Retain: true}
 }

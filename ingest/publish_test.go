@@ -82,7 +82,8 @@ func TestPresenceOfADeadConnection(t *testing.T) {
 	h.eventually(t, presence+" online", presence+" offline", presence+" online")
 }
 
-// Both payloads of a connection are made for the same instant, anew for each one.
+// Online and the will of a connection are made for the same instant, anew for each one; a
+// clean end has its own, as Sparkplug wants of a host.
 func TestPresenceIsMadeForEachConnection(t *testing.T) {
 	server, url := inProcess(t)
 	h := listen(t, server, presence)
@@ -101,7 +102,7 @@ func TestPresenceIsMadeForEachConnection(t *testing.T) {
 	h.eventually(t, presence+" on 0000", presence+" off 0000", presence+" on 0007")
 	clock.Store(9)
 	stop()
-	h.eventually(t, presence+" on 0000", presence+" off 0000", presence+" on 0007", presence+" off 0007")
+	h.eventually(t, presence+" on 0000", presence+" off 0000", presence+" on 0007", presence+" off 0009")
 }
 
 func TestPublish(t *testing.T) {

@@ -25,6 +25,8 @@ const (
 	TimeWrong                    // the stamp cannot be read
 	UnsetClock                   // stamp before 2000: the publisher's clock is not set
 	Ahead                        // stamp further in the future than allowed
+	Unborn                       // an integer of Sparkplug B, before a birth that tells of which kind
+	Transient                    // not to be stored, says its Sparkplug B publisher
 	OutOfRange                   // outside the instrument's range
 	Overflow                     // good, but the buffer was full: left with the broker, which delivers it again
 
@@ -37,7 +39,7 @@ var reasonNames = [reasons]string{
 	NotANumber: "not-a-number", NotFinite: "not-finite",
 	UnknownQuality: "unknown-quality", UnitMismatch: "unit-mismatch", TooMany: "too-many", WrongWord: "wrong-word", Retained: "retained",
 	TimeMissing: "time-missing", TimeWrong: "time-wrong", UnsetClock: "unset-clock",
-	Ahead: "ahead", OutOfRange: "out-of-range", Overflow: "overflow",
+	Ahead: "ahead", Unborn: "before-birth", Transient: "transient", OutOfRange: "out-of-range", Overflow: "overflow",
 }
 
 // String returns the reason's word, such as "out-of-range".

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"math/rand/v2"
 	"net"
 	"net/url"
 	"slices"
@@ -12,6 +13,8 @@ import (
 	"time"
 
 	mqtt "github.com/eclipse/paho.mqtt.golang"
+
+	"heatreeve/ingest/sparkplug"
 )
 
 // Session keeps one persistent MQTT session and the readings it delivers.
@@ -39,6 +42,8 @@ type Session struct {
 
 	listening *listening // nil of a session that decodes
 	outcomes  []Outcome  // of the message at hand
+	owed      debts
+	told      SparkplugStats // of which the first of each kind is logged
 	short     shortLives
 }
 
@@ -55,8 +60,11 @@ func New(tags []Tag, o Options) (*Session, error) {
 		return nil, err
 	}
 	s := &Session{
-		tags: tags, o: o, broker: b, decoder: decoder, strays: newStrays(),
+		tags: tags, o: o, broker: b, decoder: decoder, strays: newStrays(), owed: make(debts),
 		inbox: newInbox(o.Buffer, patience(o.PingTimeout)), outbox: newOutbox(o.Outbox), tally: newTally(len(tags)),
+	}
+	if o.Rebirths {
+		decoder.plug.start(decoder.ahead, rand.Float64)
 	}
 	if o.Presence != nil {
 		s.will = slices.Clone(o.Presence.Offline(o.Now()))
@@ -66,10 +74,14 @@ func New(tags []Tag, o Options) (*Session, error) {
 			return nil, fmt.Errorf("buffer of %d readings: topic %q feeds %d tags with up to %d in one message", o.Buffer, t.name, len(t.tags), n)
 		}
 	}
-	if err := checkFilters(o.Subscribe, decoder.sorted()); err != nil {
+	topics := append(decoder.sorted(), decoder.plug.filters()...)
+	if o.Host != "" {
+		topics = append(topics, &topic{name: o.Presence.Topic, qos: 1})
+	}
+	if err := checkFilters(o.Subscribe, topics); err != nil {
 		return nil, err
 	}
-	s.topics, s.covered = under(o.Subscribe, decoder.sorted())
+	s.topics, s.covered = under(o.Subscribe, topics)
 	return s, nil
 }
 
@@ -96,6 +108,9 @@ func (s *Session) Run(ctx context.Context) error {
 	var sender sync.WaitGroup
 	sender.Go(func() { s.send(sending, client) })
 	sender.Go(func() { s.sweep(sending, client) })
+	if s.o.Rebirths && s.decoder.plug != nil {
+		sender.Go(func() { s.ask(sending) })
+	}
 	<-ctx.Done()
 	s.part()
 	if l := s.link.Load(); l != nil {
@@ -109,7 +124,7 @@ func (s *Session) Run(ctx context.Context) error {
 
 func (s *Session) clientOptions(ctx context.Context) *mqtt.ClientOptions {
 	o := mqtt.NewClientOptions().AddBroker("tcp://" + s.broker.address()).SetProtocolVersion(4)
-	o.SetClientID(s.o.ClientID).SetCleanSession(s.o.Transient)
+	o.SetClientID(s.o.ClientID).SetCleanSession(s.o.Transient || s.o.Host != "")
 	o.SetKeepAlive(s.o.KeepAlive).SetPingTimeout(s.o.PingTimeout).SetConnectTimeout(s.o.ConnectTimeout)
 	o.SetAutoReconnect(true).SetMaxReconnectInterval(s.o.MaxBackoff)
 	o.SetConnectRetry(!s.o.Transient).SetConnectRetryInterval(min(5*time.Second, s.o.MaxBackoff))
@@ -146,6 +161,7 @@ func (s *Session) credentials() (user, password string) {
 // open is called for each attempt, after all messages of the connection before
 // have been handled.
 func (s *Session) open(ctx context.Context) (net.Conn, error) {
+	s.departed(ctx)
 	if err := s.dialErr.Load(); err != nil {
 		return nil, *err
 	}
@@ -158,6 +174,9 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 		return nil, err
 	}
 	l := newLink(conn, s.o.ConnectTimeout, func(l *link, d *delivery) { s.receive(ctx, l, d) })
+	if s.decoder.plug != nil || s.listening != nil {
+		l.in.most = maxPacket - MaxPayload + sparkplug.MaxPayload
+	}
 	s.link.Store(l)
 	return l, nil
 }
@@ -172,8 +191,12 @@ func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 	}
 	topic := string(d.topic)
 	out, known := s.decoder.Decode(topic, d.payload, arrival, d.retained, s.outcomes[:0])
+	out = s.owed.pay(out)
 	s.outcomes = out
-	if !known {
+	switch {
+	case s.o.Host != "" && topic == s.o.Presence.Topic:
+		s.contradict(d.payload)
+	case !known:
 		s.unknown(topic, arrival)
 	}
 	var m *message
@@ -184,8 +207,10 @@ func (s *Session) receive(ctx context.Context, by acknowledger, d *delivery) {
 		out[i].InOrder, out[i].Retained = m != nil && !d.retained, d.retained
 	}
 	if !s.inbox.put(ctx, m, out) {
+		s.owed.note(s.tags, out)
 		s.overflow(out, d.payload, arrival)
 	}
+	s.tellRefused()
 	for _, r := range s.tally.count(arrival, out) {
 		s.o.Log.Warn("message refused; more of this kind are only counted", "reason", r.Reason.String(), "refusal", r.Error())
 	}
@@ -244,7 +269,7 @@ func (s *Session) TellAt(n int) { s.inbox.tellAt(n) }
 // Stats returns the counts so far.
 func (s *Session) Stats() Stats {
 	stats := s.tally.copy()
-	stats.Outbox = s.outbox.stats()
+	stats.Outbox, stats.Sparkplug = s.outbox.stats(), s.decoder.plug.stats()
 	if c := s.client.Load(); c != nil {
 		stats.Connected = (*c).IsConnectionOpen()
 	}

@@ -19,6 +19,7 @@ type Stats struct {
 	LastReceived int64    // arrival of the last message, Unix nanoseconds; 0: none yet
 	UnknownTopic uint64   // messages on a topic that no tag reads from
 	Outbox       OutboxStats
+	Sparkplug    SparkplugStats
 	Tags         []TagStats // as given to [New]
 }
 

@@ -8,6 +8,7 @@ import (
 	"unicode/utf8"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/sparkplug"
 	"heatreeve/thermo/unit"
 )
 
@@ -53,6 +54,16 @@ type Tag struct {
 	// Liveness is set where the messages tell not a value but whether their source is
 	// alive.
 	Liveness *Liveness
+	// Metric is set where the tag reads one of a Sparkplug B namespace in place of a topic.
+	Metric *Metric
+}
+
+// Metric is one that an edge node, or a device behind it, publishes by Sparkplug B. It
+// carries its own value, time and quality. With a [Liveness] the tag is 1 from the birth
+// of the source to its death, and 0 from there.
+type Metric struct {
+	Source sparkplug.Source
+	Name   string // "" with a Liveness
 }
 
 // Signal is a raw signal, of which more than a factor and an offset makes the quantity.
@@ -71,7 +82,11 @@ func (t Tag) check() error {
 	if t.Name == "" {
 		fault("topic %q: the name is empty", t.Topic)
 	}
-	if err := checkTopic(t.Topic); err != nil {
+	if t.Metric != nil {
+		if err := t.checkMetric(); err != nil {
+			fault("%w", err)
+		}
+	} else if err := checkTopic(t.Topic); err != nil {
 		fault("%w", err)
 	}
 	for _, p := range t.pointers() {
@@ -124,6 +139,20 @@ func (t *Tag) pointers() []string {
 		all = append(all, t.Quality.At)
 	}
 	return all
+}
+
+func (t *Tag) checkMetric() error {
+	source := t.Metric.Source.String()
+	if s, err := sparkplug.ParseSource(source); err != nil || s != t.Metric.Source {
+		return fmt.Errorf("source %q is no group/node or group/node/device", source)
+	}
+	switch {
+	case t.Topic+t.Value+t.Time+t.TimeFormat+t.UnitAt != "" || t.Samples != nil || t.Quality != nil:
+		return fmt.Errorf("a metric of %q and a topic, or places in its messages; a metric carries its own value, time and quality", source)
+	case (t.Metric.Name == "") != (t.Liveness != nil):
+		return fmt.Errorf("metric %q of %q: one that tells whether its source is alive has no name, any other has one", t.Metric.Name, source)
+	}
+	return nil
 }
 
 func checkTopic(topic string) error {

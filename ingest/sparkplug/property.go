@@ -105,25 +105,17 @@ func integerProperty(b []byte) (q int64, ok, sound bool) {
 	return q, ok, true
 }
 
-// The values of the property Quality: Sparkplug 3.0, chapter 6. Without it a metric is good.
-const (
-	qualityBad   = 0
-	qualityGood  = 192
-	qualityStale = 500
-)
-
-// mark is what a metric says of its own value. A value of Quality that the standard
-// does not know leaves it uncertain.
+// mark is what a metric says of its own value: without the property it is good, and with
+// a number that the standard does not know uncertain.
 func (m *Metric) mark() quality.Mark {
-	switch {
-	case m.Null:
+	if m.Null {
 		return quality.NoValue
-	case !m.Rated || m.Quality == qualityGood:
+	}
+	if !m.Rated {
 		return quality.None
-	case m.Quality == qualityBad:
-		return quality.Rejected
-	case m.Quality == qualityStale:
-		return quality.StaleAtSource
+	}
+	if mark, ok := quality.Sparkplug(m.Quality); ok {
+		return mark
 	}
 	return quality.Doubted
 }
