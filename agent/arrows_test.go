@@ -34,6 +34,9 @@ var arrows = map[string][]string{
 		"agent/loads",
 	},
 	"agent/parquet": {},
+	"agent/proving": {
+		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
+	},
 	"agent/survey": {
 		"agent/site", "ingest", "thermo/unit",
 	},
@@ -43,8 +46,8 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/survey", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
-	"agent/cmd/heatreeve": {"agent", "agent/survey", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent/cmd/heatreeve": {"agent", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
 

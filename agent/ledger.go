@@ -270,7 +270,7 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 	beat := loads.Beat{Through: through, Readings: make([]loads.Reading, len(received))}
 	for i, r := range received {
 		kept.Readings[i] = store.Reading{Tag: l.tagIDs[r.Tag], At: r.At, Value: r.Value, Stamped: r.Stamped, Mark: uint8(r.Mark)}
-		beat.Readings[i] = loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value, Mark: r.Mark}
+		beat.Readings[i] = readingOf(r)
 	}
 	for _, m := range l.accounts.advance(beat) {
 		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))
@@ -278,6 +278,11 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 	l.batch.Beats = append(l.batch.Beats, kept)
 	l.waiting += len(received)
 	l.bound()
+}
+
+// readingOf is a reading as the engine takes it.
+func readingOf(r ingest.Reading) loads.Reading {
+	return loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value, Mark: r.Mark}
 }
 
 func (l *ledger) minute(m loads.Minute) store.Minute {

@@ -137,7 +137,7 @@ func split(name string) []string {
 var suffixes = map[string]string{
 	"degc": "°C", "celsius": "°C", "degf": "°F", "fahrenheit": "°F", "kelvin": "K", "degk": "K",
 	"m3h": "m3/h", "m3/h": "m3/h", "m3hr": "m3/h", "cmh": "m3/h", "lpm": "L/min", "lmin": "L/min", "lps": "L/s", "ls": "L/s", "lph": "L/h", "lh": "L/h",
-	"gpm": "US gal/min", "kgs": "kg/s", "kgh": "kg/h", "kghr": "kg/h", "th": "t/h", "nm3h": "Nm3/h",
+	"gpm": "gpm", "kgs": "kg/s", "kgh": "kg/h", "kghr": "kg/h", "th": "t/h", "nm3h": "Nm3/h",
 	"bar": "bar", "barg": "barg", "bara": "bara", "mbar": "mbar", "kpa": "kPa", "mpa": "MPa", "psi": "psi", "psig": "psig", "psia": "psia",
 	"kw": "kW", "mw": "MW", "kwh": "kWh", "mwh": "MWh", "gj": "GJ", "m3": "m3", "pct": "%", "percent": "%",
 }

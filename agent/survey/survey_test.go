@@ -11,6 +11,7 @@ import (
 	"time"
 
 	"heatreeve/agent/site"
+	"heatreeve/thermo/unit"
 )
 
 const epoch = int64(1_790_000_000_000_000_000)
@@ -261,4 +262,13 @@ func FuzzHear(f *testing.F) {
 			}
 		}
 	})
+}
+
+// Every spelling that names end in stands for a unit that tags can have.
+func TestSuffixesAreUnits(t *testing.T) {
+	for text, symbol := range suffixes {
+		if _, err := unit.LookupAs(symbol, tells...); err != nil {
+			t.Errorf("%q: %v", text, err)
+		}
+	}
 }

@@ -5,13 +5,22 @@ import (
 	"fmt"
 	"os"
 	"strings"
+	"time"
 
 	"heatreeve/agent/site"
 )
 
-func runCheck(_ context.Context, c *call) error {
+func runCheck(ctx context.Context, c *call) error {
+	live := c.flags.Bool("live", false, "hold the site against its broker as well")
+	length := c.flags.Duration("for", time.Minute, "listen for `DURATION`, such as 60s or 10m; with --live")
 	if err := c.parse(1, "the site file"); err != nil {
 		return err
+	}
+	switch {
+	case !*live && len(c.given("live")) > 0:
+		return wrongf("heatreeve check: --for is for --live")
+	case *length < time.Second || *length > longestListening:
+		return wrongf("heatreeve check: --for %s: allowed are 1s to %s", *length, longestListening)
 	}
 	s, err := load(c.operands[0])
 	if err != nil {
@@ -26,6 +35,9 @@ func runCheck(_ context.Context, c *call) error {
 	}
 	for _, note := range notes(s) {
 		fmt.Fprintln(c.stdout, wrapped("note: "+note, "  "))
+	}
+	if *live {
+		return c.checkLive(ctx, s, *length)
 	}
 	return nil
 }

@@ -132,8 +132,8 @@ func stampsOf(s *survey.Signal) string {
 
 // legible is a text from elsewhere as a terminal may show it.
 func legible(text string) string {
-	if quoted := strconv.Quote(text); quoted != `"`+text+`"` {
-		return quoted
+	if strings.ContainsFunc(text, func(r rune) bool { return !strconv.IsPrint(r) }) {
+		return strconv.Quote(text)
 	}
 	return text
 }

@@ -1,0 +1,169 @@
+package proving
+
+import (
+	"fmt"
+	"slices"
+	"time"
+
+	"heatreeve/agent/site"
+	"heatreeve/ingest/quality"
+)
+
+// mostLags bounds the lags that are remembered of a tag.
+const mostLags = 512
+
+// tagTrial is what was heard of one tag.
+type tagTrial struct {
+	live, kept  int
+	marks       map[quality.Mark]int // of readings that are not good
+	first, last int64                // stamps of live readings
+	gap         int64                // longest between two stamps
+	newest      Heard                // by stamp, live or kept
+	min, max    float64
+	lags        []int64
+}
+
+func (t *tagTrial) hear(h Heard) {
+	if t.live+t.kept == 0 || h.At >= t.newest.At {
+		t.newest = h
+	}
+	if h.Mark != quality.None {
+		if t.marks == nil {
+			t.marks = map[quality.Mark]int{}
+		}
+		t.marks[h.Mark]++
+	}
+	if h.Retained {
+		t.kept++
+		return
+	}
+	t.live++
+	switch {
+	case t.live == 1:
+		t.first, t.last, t.min, t.max = h.At, h.At, h.Value, h.Value
+	case h.At > t.last:
+		t.gap = max(t.gap, h.At-t.last)
+		t.last = h.At
+	}
+	if h.Mark.Quality() != quality.Bad {
+		t.min, t.max = min(t.min, h.Value), max(t.max, h.Value)
+	}
+	if h.Stamped && len(t.lags) < mostLags {
+		t.lags = append(t.lags, h.Arrival-h.At)
+	}
+}
+
+// Tag is what a trial found out about one tag.
+type Tag struct {
+	Name, Topic string
+	Live, Kept  int     // readings, and those of messages that the broker had kept
+	Every       float64 // mean time between live readings, s; 0 where fewer than two came
+	Has         bool    // a reading came
+	Value       float64 // the newest, SI
+	Shown       string  // the same in the unit of the tag
+	Mark        quality.Mark
+	Stamped     bool
+	Behind      float64 // median of how far stamps are behind arrivals, s
+	Jitter      float64 // half of the span of the middle 80 % of it, s
+	Findings    []Finding
+}
+
+// Doubtful tells whether the newest reading is not good.
+func (t *Tag) Doubtful() bool { return t.Has && t.Mark.Quality() != quality.Good }
+
+func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
+	declared, heard := &t.site.Tags[i], &t.tags[i]
+	told := Tag{Name: declared.Name, Topic: declared.Topic, Live: heard.live, Kept: heard.kept, Stamped: declared.Time != ""}
+	if heard.live > 1 {
+		told.Every = float64(heard.last-heard.first) / float64(heard.live-1) / 1e9
+	}
+	if heard.live+heard.kept > 0 {
+		told.Has, told.Value, told.Mark = true, heard.newest.Value, heard.newest.Mark
+		told.Shown = shown(declared, told.Value)
+	}
+	if lags := slices.Sorted(slices.Values(heard.lags)); len(lags) > 0 {
+		n := len(lags)
+		told.Behind = float64(lags[n/2]) / 1e9
+		told.Jitter = float64(lags[n-1-n/10]-lags[n/10]) / 2e9
+	}
+	told.Findings = heard.findings(declared, &told, seconds, refused, time.Duration(t.site.Timing.Ahead))
+	return told
+}
+
+// shown is a value in the unit that its tag has in the file, gauge pressures as such.
+func shown(t *site.Tag, si float64) string {
+	return fmt.Sprintf("%.6g %s", (si-t.Offset)/t.Scale, t.Unit.Symbol)
+}
+
+// wanted is how many equal readings in a row look stuck.
+const wanted = 10
+
+func (t *tagTrial) findings(declared *site.Tag, told *Tag, seconds float64, refused []Refused, ahead time.Duration) (all []Finding) {
+	add := func(level Level, format string, args ...any) {
+		all = append(all, Finding{level, fmt.Sprintf(format, args...)})
+	}
+	for _, r := range refused {
+		level := Note
+		if told.Live == 0 {
+			level = Fault
+		}
+		why := r.Reason
+		if r.Last != "" {
+			why += ": " + r.Last
+		}
+		add(level, "%d messages refused, %s", r.Count, why)
+	}
+	silent := declared.OnChange || declared.Liveness != nil && declared.Liveness.Online != ""
+	switch {
+	case told.Live > 0:
+	case len(refused) > 0:
+	case told.Kept > 0 && !silent:
+		add(Fault, "only a message that the broker had kept; nothing live in %.0f s", seconds)
+	case silent:
+		add(Note, "nothing live in %.0f s; it reports on change, so listen for longer, or make it change", seconds)
+	default:
+		add(Fault, "no message on topic %q in %.0f s; check the topic, the publisher and the broker's access list, or listen for longer", declared.Topic, seconds)
+	}
+	if gap := time.Duration(t.gap); !silent && declared.Holds() > 0 && gap > declared.Holds() {
+		add(Fault, "%v without a reading, but max_age is %v: what needs it is blind in between", gap.Round(time.Second), declared.Holds())
+	}
+	if t.live >= wanted && t.min == t.max && declared.Counter == nil && declared.Liveness == nil && !declared.OnChange {
+		add(Note, "has not moved in %d readings; stuck, or with a coarse step", t.live)
+	}
+	if told.Stamped && len(t.lags) > 0 {
+		t.clock(declared, told, ahead, add)
+	}
+	for _, m := range slices.Sorted(func(yield func(quality.Mark) bool) {
+		for m := range t.marks {
+			if !yield(m) {
+				return
+			}
+		}
+	}) {
+		level := Note
+		if m.Quality() == quality.Bad && t.marks[m] == t.live+t.kept {
+			level = Fault
+		}
+		add(level, "%d readings %v by their source: %v", t.marks[m], m.Quality(), m)
+	}
+	return all
+}
+
+// slowClock is how far stamps may lie beside arrivals without a remark, s.
+const slowClock = 5
+
+func (t *tagTrial) clock(declared *site.Tag, told *Tag, ahead time.Duration, add func(Level, string, ...any)) {
+	lag := time.Duration(told.Behind * float64(time.Second)).Round(100 * time.Millisecond)
+	zone := ""
+	if quarter := 15 * time.Minute; lag.Abs() > quarter/2 && (lag-lag.Round(quarter)).Abs() < 30*time.Second {
+		zone = "; that is the step of a time zone"
+	}
+	switch {
+	case -lag > ahead/2:
+		add(Fault, "stamps are %v ahead of this machine's clock, which refuses more than %v: set the clocks by network time%s", -lag, ahead, zone)
+	case declared.Holds() > 0 && lag > declared.Holds():
+		add(Fault, "stamps are %v behind this machine's clock, more than its max_age of %v: figures would be shown blind%s", lag, declared.Holds(), zone)
+	case told.Behind > slowClock || told.Behind < -slowClock:
+		add(Note, "stamps are %v behind this machine's clock%s", lag, zone)
+	}
+}
