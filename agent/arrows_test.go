@@ -38,7 +38,7 @@ var arrows = map[string][]string{
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
 	"agent/survey": {
-		"agent/site", "ingest", "thermo/unit",
+		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
 	"agent/metrics": {
 		"agent/view", "agent/loads", "agent/design",

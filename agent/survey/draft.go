@@ -97,6 +97,9 @@ func (d Draft) tags(w io.Writer) {
 // keys is the declaration of a tag.
 func (s *Signal) keys() string {
 	keys := []string{"topic: " + quoted(s.Topic)}
+	if s.Metric != "" {
+		keys = []string{"sparkplug: " + quoted(s.Topic), "metric: " + quoted(s.Metric)}
+	}
 	add := func(key, value string) {
 		if value != "" {
 			keys = append(keys, key+": "+value)
@@ -113,8 +116,10 @@ func (s *Signal) keys() string {
 	add("accuracy", Blank)
 	if s.Guess.Counts {
 		add("counts", "{}")
-	} else {
+	} else if s.Metric == "" { // by Sparkplug the source's life tells
 		add("max_age", maxAge(s.Gap))
+	} else {
+		add("reports", "on change")
 	}
 	return "{" + strings.Join(keys, ", ") + "}"
 }

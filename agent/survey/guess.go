@@ -108,6 +108,10 @@ func fromNames(s *Signal) Guess {
 // the levels of its topic, from the last one on.
 func names(s *Signal) []string {
 	var all []string
+	if s.Metric != "" {
+		all = strings.Split(s.Metric, "/")
+		slices.Reverse(all)
+	}
 	for p := s.Samples + s.Value; p != ""; p = parent(p) {
 		if k := key(p); !slices.Contains(valueWords, plain(k)) {
 			all = append(all, k)

@@ -10,7 +10,9 @@ import (
 
 const (
 	// MostSeries is how many places of one topic's payloads are looked at.
-	MostSeries = 256
+	MostSeries = 1000
+	// mostInAll is how many places of all topics are.
+	mostInAll = 100_000
 	// mostElements is how many elements of a list are looked at in one message.
 	mostElements = 64
 	// deepest is how deep in lists and objects is looked.

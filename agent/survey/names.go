@@ -70,6 +70,9 @@ func tagName(s *Signal, levels int) string {
 // own are the names that lead to a signal, from the topic's first level on.
 func own(s *Signal) []string {
 	parts := slices.DeleteFunc(strings.Split(s.Topic, "/"), func(level string) bool { return level == "" })
+	if s.Metric != "" {
+		parts = append(parts, slices.DeleteFunc(strings.Split(s.Metric, "/"), func(level string) bool { return level == "" || slices.Contains(valueWords, plain(level)) })...)
+	}
 	for _, token := range strings.Split(s.Samples+s.Value, "/")[1:] {
 		if !slices.Contains(valueWords, plain(token)) && token != "" {
 			parts = append(parts, key("/"+token))

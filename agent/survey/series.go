@@ -58,6 +58,13 @@ func (s *series) number(raw []byte) {
 		s.others++
 		return
 	}
+	s.value(x)
+	if i := slices.Index(raw, '.'); i >= 0 {
+		s.decimals = max(s.decimals, len(raw)-i-1)
+	}
+}
+
+func (s *series) value(x float64) {
 	switch {
 	case s.numbers == 0:
 		s.min, s.max = x, x
@@ -68,9 +75,6 @@ func (s *series) number(raw []byte) {
 	}
 	s.numbers++
 	s.min, s.max, s.last = math.Min(s.min, x), math.Max(s.max, x), x
-	if i := slices.Index(raw, '.'); i >= 0 {
-		s.decimals = max(s.decimals, len(raw)-i-1)
-	}
 }
 
 func (s *series) word(raw []byte) {
@@ -92,14 +96,17 @@ func (s *series) stamp(kind jsontext.Kind, raw []byte, m *Message) {
 		return
 	}
 	s.stamps++
-	if m.Retained {
-		return
+	if !m.Retained {
+		s.lag(m.At - at)
 	}
+}
+
+func (s *series) lag(ns int64) {
 	if len(s.lags) < mostLags {
-		s.lags = append(s.lags, m.At-at)
+		s.lags = append(s.lags, ns)
 		return
 	}
-	s.lags[s.lagNext] = m.At - at
+	s.lags[s.lagNext] = ns
 	s.lagNext = (s.lagNext + 1) % mostLags
 }
 

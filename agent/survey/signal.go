@@ -8,6 +8,8 @@ import (
 // Signal is one number that a topic carries.
 type Signal struct {
 	Topic string `json:"-"`
+	// Metric is the name of a Sparkplug metric, whose source is Topic; "" of any other.
+	Metric string `json:"metric,omitempty"`
 	// Samples is the pointer of the list that the messages carry, "" where they carry one
 	// value. Value, Time, Quality and Unit are pointers in the message, or in an
 	// element of that list; "" for none, and as Value for a bare number.
@@ -75,7 +77,7 @@ func (t *topic) measures(pointer string) bool {
 	switch {
 	case s.numbers == 0 || s.numbers < s.texts:
 		return false
-	case pointer == "":
+	case pointer == "" || t.plug:
 		return true
 	case s.timed() && (named(pointer, timeWords) || s.rising()):
 		return false
@@ -95,6 +97,11 @@ func (t *topic) signal(pointer string) Signal {
 	if t.live > 1 {
 		told.Every = float64(t.last-t.first) / float64(t.live-1) / 1e9
 		told.Gap = float64(t.longestGap) / 1e9
+	}
+	if t.plug {
+		told.Metric, told.Value, told.Clock = pointer, "", s.clock()
+		told.Guess = guess(&told)
+		return told
 	}
 	if at, ok := t.beside(pointer, func(p string, x *series) bool { return x.timed() && (named(p, timeWords) || x.rising()) }); ok {
 		_, told.Time = list(at)

@@ -5,6 +5,8 @@
 //
 // It listens only, and keeps no payload. What it remembers is bounded: of each topic the
 // [MostSeries] values met first, and of topics as many as it is told.
+// Sparkplug B is read too: there an edge node or device stands for a topic, and its metrics
+// for values.
 package survey
 
 import (
@@ -12,6 +14,8 @@ import (
 	"slices"
 	"strings"
 	"sync"
+
+	"heatreeve/ingest/sparkplug"
 )
 
 // Message is one as a broker delivered it.
@@ -32,7 +36,9 @@ type Survey struct {
 
 	mu       sync.Mutex
 	topics   map[string]*topic
+	plug     *plug
 	messages uint64
+	room     int    // places that may still be looked at
 	beyond   uint64 // messages of topics beyond most
 }
 
@@ -41,7 +47,7 @@ func New(most int) *Survey {
 	if most <= 0 {
 		most = DefaultTopics
 	}
-	return &Survey{most: most, topics: make(map[string]*topic)}
+	return &Survey{most: most, room: mostInAll, topics: make(map[string]*topic), plug: newPlug()}
 }
 
 // Hear takes in one message. Those of the broker about itself ($SYS) are left out.
@@ -52,16 +58,25 @@ func (s *Survey) Hear(m Message) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	s.messages++
-	t := s.topics[m.Topic]
-	if t == nil {
-		if len(s.topics) >= s.most {
-			s.beyond++
-			return
-		}
-		t = newTopic(m.Topic)
-		s.topics[m.Topic] = t
+	if at, ok := sparkplug.ParseTopic(m.Topic); ok {
+		s.hearPlug(at, m)
+		return
 	}
-	t.hear(m)
+	if t := s.topic(m.Topic); t != nil {
+		t.hear(m)
+	} else {
+		s.beyond++
+	}
+}
+
+// topic is what is known of one; nil where there is no room for it.
+func (s *Survey) topic(name string) *topic {
+	t := s.topics[name]
+	if t == nil && len(s.topics) < s.most {
+		t = newTopic(name, &s.room)
+		s.topics[name] = t
+	}
+	return t
 }
 
 // Progress is how far a survey has come.
@@ -70,13 +85,18 @@ type Progress struct {
 	Messages uint64
 	// Beyond counts the messages on topics for which there was no room.
 	Beyond uint64
+	// Unnamed counts the Sparkplug metrics that came under an alias which no birth has
+	// told since the survey began, and Malformed the messages of that namespace that
+	// could not be read.
+	Unnamed, Malformed uint64
 }
 
 // Progress returns the counts so far.
 func (s *Survey) Progress() Progress {
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	return Progress{Topics: len(s.topics), Messages: s.messages, Beyond: s.beyond}
+	c := s.plug.space.Counts()
+	return Progress{Topics: len(s.topics), Messages: s.messages, Beyond: s.beyond, Unnamed: c.UnknownAlias, Malformed: c.Malformed}
 }
 
 // Topics returns what was found, by name.

@@ -15,10 +15,11 @@ import (
 type Shape string
 
 const (
-	Nothing Shape = "empty"    // no payload, or blanks
-	Bare    Shape = "number"   // nothing but a number
-	Words   Shape = "text"     // printable, and no JSON
-	JSON    Shape = "JSON"     // an object or a list
+	Nothing Shape = "empty"  // no payload, or blanks
+	Bare    Shape = "number" // nothing but a number
+	Words   Shape = "text"   // printable, and no JSON
+	JSON    Shape = "JSON"   // an object or a list
+	Plug    Shape = "Sparkplug B"
 	Bytes   Shape = "bytes"    // not printable
 	Mixed   Shape = "mixed"    // now one, now another
 	TooLong Shape = "too long" // more than is read of a payload
@@ -34,12 +35,28 @@ type topic struct {
 	largest            int // payload, bytes
 	shape              Shape
 	series             map[string]*series // by pointer; "" of a bare payload
+	room               *int               // places that may still be looked at, of all topics
 	crowded            bool               // there were more places than are looked at
+	plug               bool               // it is an edge node or device of Sparkplug, and series are its metrics
 }
 
-func newTopic(name string) *topic { return &topic{name: name, series: make(map[string]*series)} }
+func newTopic(name string, room *int) *topic {
+	return &topic{name: name, room: room, series: make(map[string]*series)}
+}
 
 func (t *topic) hear(m Message) {
+	t.count(m)
+	shape := t.look(&m)
+	switch {
+	case t.messages == 1:
+		t.shape = shape
+	case t.shape != shape:
+		t.shape = Mixed
+	}
+}
+
+// count takes in that a message came.
+func (t *topic) count(m Message) {
 	t.messages++
 	t.largest = max(t.largest, len(m.Payload))
 	if m.Retained {
@@ -51,13 +68,6 @@ func (t *topic) hear(m Message) {
 			t.longestGap = max(t.longestGap, m.At-t.last)
 		}
 		t.last = m.At
-	}
-	shape := t.look(&m)
-	switch {
-	case t.messages == 1:
-		t.shape = shape
-	case t.shape != shape:
-		t.shape = Mixed
 	}
 }
 
@@ -87,21 +97,29 @@ func (t *topic) look(m *Message) Shape {
 
 // at takes in the value at one place.
 func (t *topic) at(pointer string, kind jsontext.Kind, raw []byte, m *Message) {
-	s := t.series[pointer]
-	if s == nil {
-		if len(t.series) >= MostSeries {
-			t.crowded = true
-			return
-		}
-		s = new(series)
-		t.series[pointer] = s
+	if s := t.place(pointer); s != nil {
+		s.hear(kind, raw, m)
 	}
-	s.hear(kind, raw, m)
+}
+
+// place is what came at one place so far; nil where there is no room for it.
+func (t *topic) place(at string) *series {
+	s := t.series[at]
+	if s == nil {
+		if len(t.series) >= MostSeries || *t.room <= 0 {
+			t.crowded = true
+			return nil
+		}
+		*t.room--
+		s = new(series)
+		t.series[at] = s
+	}
+	return s
 }
 
 // Topic is what was found out about one topic.
 type Topic struct {
-	Name     string `json:"topic"`
+	Name     string `json:"topic"` // of a Sparkplug source group/node or group/node/device
 	Shape    Shape  `json:"payload"`
 	Messages int    `json:"messages"`
 	Retained int    `json:"retained"` // of them, kept by the broker from before

@@ -42,6 +42,12 @@ func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 	if p.Beyond > 0 {
 		fmt.Fprintf(w, "%d messages came on more topics than were looked into; give --filter, or --most.\n", p.Beyond)
 	}
+	if p.Unnamed > 0 {
+		fmt.Fprintln(w, wrapped(fmt.Sprintf("note: %d Sparkplug metrics came under an alias alone, and their node has not said since which is which: it does so at its birth. Let it be born again while a survey listens.", p.Unnamed), "  "))
+	}
+	if p.Malformed > 0 {
+		fmt.Fprintf(w, "note: %d messages of the Sparkplug namespace could not be read.\n", p.Malformed)
+	}
 	found, doubts := survey.Loads(d.Topics)
 	if len(found) > 0 {
 		fmt.Fprint(w, "\nLoads that names suggest:\n")
@@ -68,7 +74,7 @@ func topicLines(t *columns, topic *survey.Topic) {
 	}
 	for i := range topic.Signals {
 		s := &topic.Signals[i]
-		at := legible(s.Samples + strings.Repeat("/*", min(1, len(s.Samples))) + s.Value)
+		at := legible(s.Metric + s.Samples + strings.Repeat("/*", min(1, len(s.Samples))) + s.Value)
 		t.line(name, at, every(topic.Every, topic.Retained == topic.Messages), valuesOf(s), likely(s), stampsOf(s))
 		name = ""
 	}
@@ -122,6 +128,8 @@ func likely(s *survey.Signal) string {
 
 func stampsOf(s *survey.Signal) string {
 	switch {
+	case s.Metric != "" && s.Clock != nil:
+		return survey.Lag(s.Clock)
 	case s.Time == "":
 		return "none"
 	case s.Clock == nil:
