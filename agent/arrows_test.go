@@ -56,6 +56,7 @@ var arrows = map[string][]string{
 var outside = map[string][]string{
 	"thermo/...":       {"os", "net", "log", "log/slog", "context", "time", "database/sql", "net/http"},
 	"ingest/quality":   {"os", "net", "log", "log/slog", "context", "time", "net/http"},
+	"ingest/signal":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"ingest/screen":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"ingest/sparkplug": {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/loads":      {"os", "net", "log", "log/slog", "context", "time", "net/http"},

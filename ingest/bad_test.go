@@ -9,6 +9,7 @@ import (
 	"time"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/signal"
 	"heatreeve/thermo/unit"
 )
 
@@ -66,6 +67,19 @@ func inUnit() Tag {
 }
 
 func withUnit(u string) func(*rand.Rand) string { return text(`{"v":60,"t":1774745940,"u":` + u + `}`) }
+
+// looped is a temperature of 0 to 200 °C by a current, and platinum one by a Pt100.
+func looped() Tag {
+	tag := celsius()
+	tag.Signal = signal.Current{Lo: 273.15, Hi: 473.15}
+	return tag
+}
+
+func platinum() Tag {
+	tag := celsius()
+	tag.Signal = signal.Resistance{R0: 100}
+	return tag
+}
 
 // sampled is celsius with a list of samples at /s, and stepped one of bare numbers, a
 // second apart.
@@ -221,6 +235,17 @@ var badKinds = []badKind{
 	{"object as a unit", inUnit, UnitMismatch, 0, withUnit(`{"°C":1}`)},
 	{"null in another unit", inUnit, 0, quality.NoValue, text(`{"v":null,"t":1774745940,"u":"°F"}`)},
 
+	{"current of a broken wire", looped, 0, quality.Failed, text(`{"v":0,"t":1774745940}`)},
+	{"failure current", looped, 0, quality.Failed, text(`{"v":3.59,"t":1774745940}`)},
+	{"failure current, high", looped, 0, quality.Failed, text(`{"v":21.5,"t":1774745940}`)},
+	{"negative current", looped, 0, quality.Failed, text(`{"v":-4,"t":1774745940}`)},
+	{"endless current", looped, NotFinite, 0, text(`{"v":1e999,"t":1774745940}`)},
+	{"current as text", looped, WrongType, 0, text(`{"v":"8.8","t":1774745940}`)},
+	{"no current", looped, 0, quality.NoValue, text(`{"v":null,"t":1774745940}`)},
+	{"failure current of yesteryear", looped, UnsetClock, 0, text(`{"v":3.5,"t":17}`)},
+	{"open thermometer", platinum, 0, quality.Failed, text(`{"v":99999,"t":1774745940}`)},
+	{"shorted thermometer", platinum, 0, quality.Failed, text(`{"v":0.3,"t":1774745940}`)},
+	{"resistance beyond the range", platinum, OutOfRange, 0, text(`{"v":300,"t":1774745940}`)},
 	{"no list of samples", sampled, ValueMissing, 0, text(`{"v":60,"t":1774745940}`)},
 	{"null list", sampled, WrongType, 0, text(`{"s":null}`)},
 	{"object for a list", sampled, WrongType, 0, text(`{"s":{"v":60,"t":1774745940}}`)},

@@ -6,6 +6,8 @@ import (
 	"fmt"
 	"testing"
 	"time"
+
+	"heatreeve/ingest/signal"
 )
 
 type sample struct {
@@ -29,6 +31,10 @@ func payloads() map[string]sample {
 	doc.Truncate(doc.Len() - 1)
 	doc.WriteString("}}")
 	rated, worded, named := saying(OPCUA)(), saying(OwnWords)(), inUnit()
+	loop, platinum, root := celsius(), celsius(), celsius()
+	loop.Signal = signal.Current{Lo: 273.15, Hi: 473.15, Slack: 0.01}
+	platinum.Signal = signal.Resistance{R0: 100, Lead: 0.4}
+	root.Signal, root.Min = signal.RootOfCurrent(300, 0.05, 0.01), 0
 	list, pairs, steps := sampled(), sampled(), stepped()
 	pairs.Value, pairs.Time = "/1", "/0"
 	var objects, arrays, numbers bytes.Buffer

@@ -30,6 +30,8 @@ const (
 	HeatCapacity                               // J/K
 	Amount                                     // mol
 	Count                                      // a number of pulses
+	Resistance                                 // ohm
+	Current                                    // A
 )
 
 var dimensions = [...]struct{ name, si string }{
@@ -53,6 +55,8 @@ var dimensions = [...]struct{ name, si string }{
 	HeatCapacity:          {"heat capacity", "J/K"},
 	Amount:                {"normal or standard volume", "mol"},
 	Count:                 {"count", "1"},
+	Resistance:            {"resistance", "ohm"},
+	Current:               {"current", "A"},
 }
 
 func (d Dimension) String() string {

@@ -9,6 +9,7 @@ var alike = strings.NewReplacer(
 	"degC", "°C", "degF", "°F", "degR", "°R", "deg C", "°C", "deg F", "°F", "° C", "°C", "° F", "°F",
 	"·", " ", "⋅", " ", "∙", " ", "*", " ", "×", " ",
 	"μ", "µ", // Greek mu, micro sign
+	"\u2126", "Ω", // ohm sign, Greek omega
 	"BTU", "Btu", "btu", "Btu",
 )
 

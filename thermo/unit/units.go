@@ -7,7 +7,7 @@ import "slices"
 var table = slices.Concat(
 	temperatures, differences, pressures, massFlows, volumeFlows, molarFlows, masses, volumes,
 	energies, powers, specificHeats, specificEnthalpies, densities, ratios, durations, sizes, molarMasses,
-	heatCapacities, amounts, counts,
+	heatCapacities, amounts, counts, resistances, currents,
 )
 
 var temperatures = rows(Temperature,
@@ -228,4 +228,15 @@ var amounts = rows(Amount,
 
 var counts = rows(Count,
 	is("pulses", 1, "a number of events", "pulse", "counts", "count"),
+)
+
+var resistances = rows(Resistance,
+	is("ohm", 1, si, "ohms", "Ohm", "Ω"),
+	is("kohm", 1e3, si, "kΩ"),
+	is("mohm", 1e-3, si, "mΩ"),
+)
+
+var currents = rows(Current,
+	is("mA", 1e-3, si),
+	is("A", 1, si),
 )
