@@ -42,6 +42,9 @@ func meaning(t *site.Tag) string {
 	if t.Counter != nil {
 		kind = "count"
 	}
+	if t.Signal != nil {
+		kind = t.Signal.Word
+	}
 	return fmt.Sprintf("%s in %s, %g x + %g, gauge %t", kind, t.Unit.Dimension.SI(), t.Scale, t.Unit.Offset, t.Unit.Gauge)
 }
 
@@ -72,7 +75,7 @@ func streamOf(s *site.Stream) loads.Stream {
 		Pressure: loads.Source(s.Pressure), OutletPressure: loads.Source(s.OutletPressure),
 		Humidity: loads.Source(s.Humidity), HumidityKind: s.HumidityKind,
 		Coil: loads.Source(s.Coil), HasCoil: s.HasCoil,
-		MeterAtOutlet: s.MeterAtOutlet, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow, Pair: s.Pair,
+		MeterAtOutlet: s.MeterAtOutlet, CalibratedAt: s.CalibratedAt, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow, Pair: s.Pair,
 		Corrections: loads.Corrections{
 			Pump: loads.Source(s.Pump), HasPump: s.HasPump, Hold: s.Hold, Stored: s.Stored, StoredOver: int64(s.StoredOver),
 		},
@@ -95,10 +98,15 @@ func targetsOf(s *site.Site) []design.Target {
 // signalsOf are the tags as the session reads them.
 func signalsOf(s *site.Site) []ingest.Tag {
 	var tags []ingest.Tag
-	for _, t := range s.Tags {
+	for i := range s.Tags {
+		t := &s.Tags[i]
 		tag := ingest.Tag{
 			Name: t.Name, Topic: t.Topic, Value: t.Value, Time: t.Time, TimeFormat: t.TimeFormat,
+			UnitAt: t.UnitAt, Unit: t.Numbers, Quality: qualityOf(t.Quality), Samples: (*ingest.Samples)(t.Samples),
 			Scale: t.Scale, Offset: t.Offset, Min: t.Min, Max: t.Max, QoS: t.QoS,
+		}
+		if t.Signal != nil {
+			rawSignal(t, &tag)
 		}
 		if l := t.Liveness; l != nil {
 			tag.Liveness = &ingest.Liveness{Online: l.Online, Offline: l.Offline, Kept: l.Kept}

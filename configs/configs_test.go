@@ -119,7 +119,7 @@ func designState(l site.HeatLoad) (loads.Stream, loads.State) {
 	kinds := map[unit.Dimension]loads.FlowKind{unit.MassFlow: loads.MassFlow, unit.VolumeFlow: loads.VolumeFlow, unit.MolarFlow: loads.MolarFlow}
 	stream := loads.Stream{
 		Fluid: st.Fluid, FlowKind: kinds[st.FlowKind], MeterAtOutlet: st.MeterAtOutlet, Gives: st.Gives, Margin: st.Margin,
-		HumidityKind: st.HumidityKind, HasCoil: st.HasCoil,
+		HumidityKind: st.HumidityKind, HasCoil: st.HasCoil, CalibratedAt: st.CalibratedAt,
 	}
 	p := cmp.Or(d.Pressure, st.Pressure.Value)
 	return stream, loads.State{

@@ -82,6 +82,8 @@ func (s *Stream) check() error {
 		return fmt.Errorf("stored heat is told over %g s: the span must be above zero", float64(c.StoredOver)/1e9)
 	case c.Stored > 0 && s.Inlet.Tag < 0 && s.Outlet.Tag < 0:
 		return errors.New("stored heat of a stream between two constant temperatures: it never changes")
+	case !positive(s.CalibratedAt):
+		return fmt.Errorf("calibrated at %g kg/m³: it must be finite and not negative", s.CalibratedAt)
 	case !(s.Pair >= 0 && s.Pair <= 1):
 		return fmt.Errorf("correlation of the thermometers of %g: it must lie between 0 and 1", s.Pair)
 	}

@@ -67,20 +67,17 @@ func (q *queue) move(volume, T, hold float64, m quality.Mark) {
 }
 
 // displacement returns what passes the meter in the state x, m³/s: at the meter's density
-// where it is metered by volume, and else at that of the inlet.
+// where it is metered by volume, and else at that of the inlet. The meter of what is
+// calibrated at a density is taken to sit at the inlet.
 func (q *equation) displacement(m *medium, x *State) (float64, error) {
-	if q.FlowKind == VolumeFlow {
+	if q.FlowKind == VolumeFlow && q.CalibratedAt == 0 {
 		return x.Flow, nil
 	}
 	in, err := m.inlet(x)
 	if err != nil {
 		return 0, err
 	}
-	mass := x.Flow
-	if q.FlowKind == MolarFlow {
-		mass *= m.MolarMass()
-	}
-	return mass / in.Density, nil
+	return q.mass(m, x.Flow, in.Density) / in.Density, nil
 }
 
 // delay puts what leaves in the grid step from f.At in the place of what enters then. It

@@ -139,9 +139,18 @@ type Stream struct {
 	Pressure Source // at the inlet, absolute Pa
 	// OutletPressure equals Pressure where the site gives only one.
 	OutletPressure Source
-	// MeterAtOutlet says in which pipe a volume meter sits: its density is
-	// taken there.
+	// MeterAtOutlet says in which pipe the meter sits: the density of a volume, and of what
+	// is CalibratedAt one, is taken there.
 	MeterAtOutlet bool
+	// CalibratedAt is the density, kg/m³, for which a flow by differential pressure was
+	// reckoned, at the place of the meter; 0 of any other flow. Such a meter shows the root of
+	// what it feels, ρ·v², so that of another density ρ
+	//
+	//	m = m_shown·√(ρ/ρ_design),  V = V_shown·√(ρ_design/ρ)
+	//
+	// and a molar flow as one by mass. The geometry and its coefficients are taken to be as
+	// reckoned (ISO 5167-1:2003, 5.1, from which both follow).
+	CalibratedAt float64
 	// Gives is true where the stream gives heat up: duty is then
 	// m·(h_in − h_out), otherwise m·(h_out − h_in).
 	Gives bool

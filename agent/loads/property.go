@@ -28,13 +28,25 @@ func (q *equation) property(f *Figure, m *medium, x *State, duty float64) {
 	in, out := m.property(x.Inlet, x.Pressure), m.property(x.Outlet, x.OutletPressure)
 	f.Share[PartCp] = duty * max(in.cp, out.cp)
 	strength := (in.cpByStrength + out.cpByStrength) / 2
-	if q.FlowKind == VolumeFlow {
+	if by := q.byDensity(); by > 0 {
 		meter := &in
 		if q.MeterAtOutlet {
 			meter = &out
 		}
-		f.Share[PartDensity] = duty * meter.density
-		strength += meter.densityByStrength
+		f.Share[PartDensity] = duty * by * meter.density
+		strength += by * meter.densityByStrength
 	}
 	f.Share[PartStrength] = duty * strength
+}
+
+// byDensity is the power of the density at the meter with which the mass flow goes: half
+// where the meter is calibrated at another, as its root is left of either kind.
+func (q *equation) byDensity() float64 {
+	switch {
+	case q.CalibratedAt > 0:
+		return 0.5
+	case q.FlowKind == VolumeFlow:
+		return 1
+	}
+	return 0
 }

@@ -3,6 +3,7 @@ package loads
 import (
 	"errors"
 	"fmt"
+	"math"
 
 	"heatreeve/thermo"
 )
@@ -168,19 +169,38 @@ func (q *equation) work(m *medium, x *State) (r Result, err error) {
 }
 
 func (q *equation) heat(m *medium, x *State, in, out *thermo.Balance) (density, mass, duty float64) {
-	density, mass = in.Density, x.Flow
+	density = in.Density
 	if q.MeterAtOutlet {
 		density = out.Density
 	}
-	switch q.FlowKind {
-	case VolumeFlow:
-		mass *= density
-	case MolarFlow:
-		mass *= m.MolarMass()
-	}
+	mass = q.mass(m, x.Flow, density)
 	duty = mass * (out.Enthalpy - in.Enthalpy)
 	if q.Gives {
 		duty = -duty
 	}
 	return density, mass, duty + q.correction(x)
+}
+
+// mass is the mass flow, kg/s, that the meter shows as flow where the fluid in it has the
+// density.
+func (q *equation) mass(m *medium, flow, density float64) float64 {
+	switch q.FlowKind {
+	case VolumeFlow:
+		flow *= density
+	case MolarFlow:
+		flow *= m.MolarMass()
+	}
+	if q.CalibratedAt == 0 {
+		return flow
+	}
+	return flow * q.felt(density)
+}
+
+// felt is by how much more or less flows than a meter shows that is calibrated at a
+// density, where the fluid has another.
+func (q *equation) felt(density float64) float64 {
+	if q.FlowKind == VolumeFlow {
+		return math.Sqrt(q.CalibratedAt / density)
+	}
+	return math.Sqrt(density / q.CalibratedAt)
 }

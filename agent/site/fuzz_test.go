@@ -55,6 +55,18 @@ func checkFigures(t *testing.T, s *Site) {
 		if c := tag.Counter; c != nil {
 			figures = append(figures, c.Modulus, c.Largest)
 		}
+		if g := tag.Signal; g != nil {
+			figures = append(figures, g.FullAt, g.CutOff, g.R0, g.Lead)
+			if g.Loop == (g.R0 > 0) && !g.Root || g.Root && tag.Min != 0 || g.Root && !g.Loop && !(g.FullAt > 0) || g.CutOff < 0 || g.Lead < 0 || tag.Counter != nil {
+				t.Errorf("tag %q: signal %+v", tag.Name, g)
+			}
+		}
+		if q := tag.Quality; q != nil && (q.At == "" || q.Code == "" && len(q.Good)+len(q.Uncertain)+len(q.Bad) == 0) || tag.Liveness == nil && tag.Numbers.Symbol == "" {
+			t.Errorf("tag %q: quality %+v, numbers in %+v", tag.Name, q, tag.Numbers)
+		}
+		if l := tag.Samples; l != nil && (tag.Time == "" || tag.Value == "" && l.Step <= 0) {
+			t.Errorf("tag %q: samples %+v without stamps or values", tag.Name, l)
+		}
 		if !(tag.Min < tag.Max) || tag.Topic == "" || a.Abs+a.Rel <= 0 && tag.Liveness == nil || tag.MaxAge <= 0 || tag.Scale <= 0 ||
 			tag.OnChange && s.Tags[tag.Alive].Liveness == nil {
 			t.Errorf("tag %+v", tag)
@@ -81,6 +93,7 @@ func checkLoad(t *testing.T, s *Site, l *HeatLoad) []float64 {
 	figures := []float64{d.Duty, d.Allow, d.Inlet, d.Outlet, d.Pressure}
 	if st := l.Stream; st != nil {
 		figures = append(figures, st.Margin, st.IdleBelow, st.Pair, st.Hold, st.Stored)
+		figures = append(figures, st.CalibratedAt)
 		if st.FlowKind == 0 || st.Stored > 0 && st.StoredOver <= 0 {
 			t.Errorf("stream %+v", st)
 		}

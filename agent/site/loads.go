@@ -71,6 +71,7 @@ func (r *reader) stream(o object, d *Design) *Stream {
 		s.OutletPressure, _ = r.source(v, unit.Pressure)
 	}
 	s.Gives = o.service("stream", "heat (a heating circuit)", "heat (a chilled circuit, a heated product)")
+	o.calibrated(s)
 	o.meter(s)
 	r.moisture(o, s)
 	if v, ok := o.get("margin"); ok {
@@ -139,8 +140,26 @@ func (o object) meter(s *Stream) {
 		s.MeterAtOutlet = at == "outlet"
 		return
 	}
-	if s.FlowKind == unit.VolumeFlow {
+	switch {
+	case s.FlowKind == unit.VolumeFlow:
 		o.need("meter_at", "inlet or outlet: a volume flow becomes a mass flow with the density at the meter")
+	case s.CalibratedAt > 0:
+		o.need("meter_at", "inlet or outlet: a flow by differential pressure is corrected for the density at the meter")
+	}
+}
+
+// calibrated reads the density that a meter by differential pressure was reckoned for.
+func (o object) calibrated(s *Stream) {
+	v, ok := o.get("calibrated_at")
+	if !ok {
+		return
+	}
+	s.CalibratedAt, _ = v.aboveZero(unit.Density)
+	switch {
+	case s.Flow.Constant() && s.FlowKind != 0:
+		v.fault("is of a meter, and the flow is a constant")
+	case s.Fluid != nil && s.Fluid.Phase() == thermo.Solid:
+		v.fault("is of a meter by differential pressure, and %q is a solid", s.FluidName)
 	}
 }
 

@@ -56,11 +56,16 @@ type Tag struct {
 	Name, Topic string
 	Broker      int // index into [Site.AllBrokers]
 	Unit        unit.Unit
-	// Scale and Offset turn a number from the payload into SI: Scale·x + Offset.
-	// For a gauge pressure Offset is the barometer, and the result is absolute.
+	// Scale and Offset turn a number from the payload into SI: Scale·x + Offset, but of a raw
+	// Signal. For a gauge pressure Offset is the barometer, and the result is absolute.
 	Scale, Offset float64
-	Value, Time   string // JSON Pointers (RFC 6901); "" is a bare number, and arrival time
-	TimeFormat    string // "s", "ms", "us", "rfc3339"; "" to tell by shape and magnitude
+	Signal        *Signal   // nil: the numbers are in Unit, or in pulses
+	Numbers       unit.Unit // of the numbers in the payload
+	Value, Time   string    // JSON Pointers (RFC 6901), of Samples into each; "" is a bare number, and arrival time
+	TimeFormat    string    // "s", "ms", "us", "rfc3339"; "" to tell by shape and magnitude
+	UnitAt        string    // JSON Pointer of the name of Numbers, into the message as a whole; "" where it has none
+	Quality       *Quality  // nil: the messages tell none
+	Samples       *Samples  // nil: a message tells one reading
 	Accuracy      Accuracy
 	MaxAge        time.Duration // how long a reading is held; default 60 s
 	Min, Max      float64       // instrument range, SI, absolute; when absent what no plant has
@@ -167,7 +172,8 @@ type Stream struct {
 	FlowKind                 unit.Dimension // MassFlow, VolumeFlow or MolarFlow, also of a counter
 	Inlet, Outlet            Source         // K
 	Pressure, OutletPressure Source         // Pa; the outlet's is the inlet's when not given
-	MeterAtOutlet            bool           // where a volume flow is metered
+	MeterAtOutlet            bool           // where a volume flow is metered, or one that is calibrated
+	CalibratedAt             float64        // kg/m³ that a meter by differential pressure was reckoned for; 0 for none
 	Gives                    bool           // gives heat, and is colder at the outlet; else it takes heat
 	Margin                   float64        // K to saturation below which heat may be latent; default 5, for moist air 1
 	IdleBelow                float64        // SI, as the flow; default 0.5 % of the flow tag's range

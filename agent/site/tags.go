@@ -33,13 +33,14 @@ func (r *reader) readTags(o object) {
 		t := r.tag(e)
 		r.tags[e.name] = len(r.site.Tags)
 		r.site.Tags = append(r.site.Tags, t)
-		source := origin{t.Broker, t.Topic, t.Value}
+		source := origin{t.Broker, t.Topic, t.place()}
 		if other, twice := sources[source]; twice && t.Topic != "" {
 			e.fault("reads the same value of the same topic as tag %q", other)
 			continue
 		}
 		sources[source] = e.name
 	}
+	r.intoLists(es)
 	r.appendLiveness(sources)
 }
 
@@ -47,6 +48,14 @@ func (r *reader) readTags(o object) {
 type origin struct {
 	broker       int
 	topic, value string
+}
+
+// place is where in the messages of its topic a tag has its value.
+func (t *Tag) place() string {
+	if t.Samples == nil {
+		return t.Value
+	}
+	return t.Samples.At + " " + t.Value
 }
 
 // noQuantity refuses a tag's name that a load would read as a constant.
@@ -86,6 +95,7 @@ func (r *reader) tag(e entry) Tag {
 		e.fault("max_age %v is shorter than the grid of %v", t.MaxAge, r.site.Timing.Grid)
 	}
 	o.payload(&t)
+	o.signal(&t, known)
 	if known {
 		o.steps(&t)
 		o.checkCounter(&t, r.site.Timing.Grid)
@@ -109,11 +119,15 @@ func (r *reader) tagUnit(v value, t *Tag) bool {
 		return false
 	}
 	u, err := unit.LookupAs(s, measured...)
+	if raw, other := unit.LookupAs(s, unit.Current, unit.Resistance); err != nil && other == nil {
+		v.fault("%v is of a raw signal; the unit is that of the quantity, and signal says what it comes by, such as 4-20 mA or Pt100", raw)
+		return false
+	}
 	if err != nil {
 		v.fault("%v", err)
 		return false
 	}
-	t.Unit, t.Scale, t.Offset = u, u.Factor, u.Offset
+	t.Unit, t.Numbers, t.Scale, t.Offset = u, u, u.Factor, u.Offset
 	if u.Gauge {
 		t.Offset, r.gauge = r.site.Barometer, true
 	}
@@ -142,18 +156,20 @@ var largestFlow = map[unit.Dimension]float64{
 // payload reads where in a message the value and its time stand.
 func (o object) payload(t *Tag) {
 	t.Value = o.pointer("value")
+	o.samples(t)
 	at, timed := o.get("time")
-	if _, ok := o.get("value"); timed && !ok {
+	if _, ok := o.get("value"); timed && !ok && t.Samples == nil {
 		at.fault("stands without value; a payload with a time is JSON, so tell where the value is, such as value: /v")
 	}
 	o.stamp(t)
+	o.said(t)
 }
 
 // stamp reads where in a message the time stands, and how it is written.
 func (o object) stamp(t *Tag) {
 	t.Time = o.pointer("time")
 	at, timed := o.get("time")
-	if timed && t.Time != "" && t.Time == t.Value {
+	if timed && t.Time != "" && t.Time == t.Value && (t.Samples == nil || t.Samples.Step == 0) {
 		at.fault("is the same place as value")
 	}
 	v, ok := o.get("time_unit")

@@ -94,6 +94,28 @@ func TestReadmeShowsGoodCounters(t *testing.T) {
 	}
 }
 
+// And the payloads and raw signals.
+func TestReadmeShowsGoodPayloads(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "### Payloads and raw signals\n\n```yaml\n")
+	text, words, closed := strings.Cut(rest, "```")
+	if !ok || !closed {
+		t.Fatal("the README shows no payloads")
+	}
+	s, err := site.Parse("README.md", []byte("site: A\ntimezone: UTC\nbarometer: 100 kPa\nbroker: {url: mqtt://127.0.0.1}\n"+text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(s.Tags) != 7 || s.Loads[0].Stream.CalibratedAt != 965 {
+		t.Errorf("the README shows %d tags and %+v", len(s.Tags), s.Loads[0].Stream)
+	}
+	words, _, _ = strings.Cut(words, "\n### ")
+	for _, key := range append([]string{"quality", "unit_at", "samples", "step", "signal", "lead", "differential", "cut_off"}, site.Keys()["tags.*.quality"]...) {
+		if !strings.Contains(text+words, "`"+key) && !strings.Contains(text+words, key+":") {
+			t.Errorf("the README says nothing of %s", key)
+		}
+	}
+}
+
 // The reasons to refuse a message that the README lists are those that there are.
 func TestReadmeNamesTheReasons(t *testing.T) {
 	_, rest, ok := strings.Cut(readme(t), "The reasons: ")
