@@ -60,6 +60,8 @@ type Agent struct {
 	health  health
 	commits prometheus.Histogram
 	watch   *watch // for the beat alone
+	// questions are asked of the beat, which knows the newest figures.
+	questions chan question
 }
 
 // New returns an agent for s that is not started yet.
@@ -73,7 +75,7 @@ func New(s *site.Site, o Options) (*Agent, error) {
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, clock: clock, session: session, commits: metrics.CommitSeconds()}
+	a := &Agent{site: s, o: o, clock: clock, session: session, commits: metrics.CommitSeconds(), questions: make(chan question)}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil
@@ -135,7 +137,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 		return a.beats(ctx, books)
 	})
 	g.Go(func() error {
-		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports))
+		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions)))
 	})
 	return g.Wait()
 }

@@ -37,6 +37,7 @@ var arrows = map[string][]string{
 	"agent/proving": {
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
+	"agent/working": {"agent/loads", "agent/design", "agent/site", "thermo", "thermo/unit"},
 	"agent/survey": {
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
@@ -46,8 +47,8 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
-	"agent/cmd/heatreeve": {"agent", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/loads", "agent/design", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent/cmd/heatreeve": {"agent", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
 
@@ -61,6 +62,7 @@ var outside = map[string][]string{
 	"ingest/sparkplug": {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/loads":      {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/design":     {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/working":    {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/parquet":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/account": {
 		"os", "net", "log", "log/slog", "context", "net/http",

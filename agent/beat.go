@@ -80,6 +80,8 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 			a.look(r, time.Now())
 		case <-a.session.Reached():
 			a.reached(r, time.Now())
+		case q := <-a.questions:
+			a.answer(r, q)
 		case <-ctx.Done():
 			return a.last(r)
 		}

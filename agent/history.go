@@ -125,11 +125,16 @@ func unknown(kind, name string, known []string) error {
 	if guess := near.Names(name, known); len(guess) > 0 {
 		return queryErrorf("%s %q is not in the history; did you mean %q?", kind, name, guess[0])
 	}
-	list := strings.Join(known[:min(len(known), mostNames)], ", ")
-	if more := len(known) - mostNames; more > 0 {
+	return queryErrorf("%s %q is not in the history; there are: %s", kind, name, listed(known))
+}
+
+// listed are names in a row, the first of many.
+func listed(names []string) string {
+	list := strings.Join(names[:min(len(names), mostNames)], ", ")
+	if more := len(names) - mostNames; more > 0 {
 		list += fmt.Sprintf(" and %d more", more)
 	}
-	return queryErrorf("%s %q is not in the history; there are: %s", kind, name, list)
+	return list
 }
 
 // loadAccount is a [LoadReport] in the making.

@@ -24,13 +24,15 @@ const Safety = `Heatreeve informs. It is no safety function, interlock or alarm 
 no billing meter. Site codes, the plant's own protection and licensed people
 come first.`
 
-// handler serves the metrics, the two answers that supervisors ask for, reports and exports.
-func handler(metrics http.Handler, health *health, reports *reports) http.Handler {
+// handler serves the metrics, the two answers that supervisors ask for, reports, explanations
+// and exports.
+func handler(metrics http.Handler, health *health, reports *reports, explains *explains) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", answer(health.alive))
 	mux.HandleFunc("GET /readyz", answer(health.ready))
 	mux.Handle("GET "+reportPath, reports)
+	mux.Handle("GET "+explainPath, explains)
 	mux.Handle("GET "+exportPath, newExports(reports))
 	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
 		w.Header().Set("Content-Type", "text/plain; charset=utf-8")
@@ -66,7 +68,7 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 		}
 		fmt.Fprint(w, "\n±: twice the standard uncertainty\n\n")
 	}
-	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
+	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/explain  the working of a figure as JSON, such as /explain?load=NAME\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
 }
 
 // answer turns a list of what is wrong into 200 or 503, a line a fault.

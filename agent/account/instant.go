@@ -29,6 +29,9 @@ func Instant(text string, zone *time.Location) (int64, error) {
 	return t, nil
 }
 
+// Moment is [Instant] for any time, which need not be a whole minute.
+func Moment(text string, zone *time.Location) (int64, error) { return instant(text, zone) }
+
 func instant(text string, zone *time.Location) (int64, error) {
 	for _, layout := range [...]string{"2006-01-02", "2006-01"} {
 		if d, err := time.Parse(layout, text); err == nil {

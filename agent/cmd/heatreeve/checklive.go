@@ -127,7 +127,7 @@ func provenLoad(w io.Writer, l *proving.Load, gives bool) {
 	default:
 		places := meant(2 * f.Uncertainty / 1e3)
 		fmt.Fprintf(w, "%s: %s ± %s kW%s\n", l.Name, decimals(f.Duty/1e3, places), decimals(2*f.Uncertainty/1e3, places), ofDesign(l))
-		working(w, l, gives)
+		dutyWorking(w, l, gives)
 	}
 	for _, x := range l.Findings {
 		fmt.Fprintln(w, indented(finding(x)+legible(x.Text), "  "))
@@ -141,8 +141,8 @@ func ofDesign(l *proving.Load) string {
 	return fmt.Sprintf(", design %s kW", figures(l.Design/1e3, 4))
 }
 
-// working is the duty of a stream in a line.
-func working(w io.Writer, l *proving.Load, gives bool) {
+// dutyWorking is the duty of a stream in a line.
+func dutyWorking(w io.Writer, l *proving.Load, gives bool) {
 	s := l.Basis.Stream
 	if s == nil {
 		return

@@ -129,7 +129,7 @@ func TestExportRefusals(t *testing.T) {
 		{"--data " + data + " --tag TT-201 --from 2026-10-25 --to 2026-10-25", exitWrong, "--to 2026-10-25 is not after from 2026-10-25"},
 		{"--data " + data + " --tag TT-201 --zone Dublin", exitWrong, `--zone "Dublin" is not known`},
 		{"--data " + data + " --tag TT-201 --from 2026-12-01", exitFailed, `no reading of tag "TT-201" from 2026-12-01 00:00 +00:00; it goes up to 2026-10-27 07:00 +00:00`},
-		{"--data " + data + " --tag TT-202", exitFailed, `no reading of tag "TT-202"; it goes up to`},
+		{"--data " + data + " --tag TT-302", exitFailed, `no reading of tag "TT-302"; it goes up to`},
 		{"--data " + dir + " --tag TT-201", exitFailed, "no history in"},
 		{"--data " + dir + "/nowhere --tag TT-201", exitFailed, "nowhere"},
 	} {

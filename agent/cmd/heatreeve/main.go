@@ -43,6 +43,7 @@ var commands = []command{
 	{"survey", "--broker URL [--for DURATION] [--filter TOPICS] [--draft FILE] [--format table|json] [--most N] [--username NAME] [--password-file FILE|--password-env VARIABLE] [--ca FILE] [--certificate FILE --key FILE] [--server-name NAME]", "find out what a broker carries, and draft a site file", surveyHelp, runSurvey},
 	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
 	{"report", "--data DIR --from DATE [--to DATE] [--by hour|day|month] [--load NAME] [--demand LENGTH] [--shares] [--format table|csv|json] [--zone NAME] [--site FILE]", "tell the heat of every load by hour, day or month", reportHelp, runReport},
+	{"explain", "LOAD --data DIR [--at TIME] [--zone NAME] [--json]", "tell the working of one figure, line by line", explainHelp, runExplain},
 	{"export", "--data DIR --tag NAME|--load NAME [--by minute|hour] [--from DATE] [--to DATE] [--format csv|json|parquet] [--zone NAME] [--progress]", "give out the readings of a tag, or the minutes or hours of a load", exportHelp, runExport},
 	{"salvage", "--data DIR [--into DIR]", "save what can be read of a damaged history to a new one", salvageHelp, runSalvage},
 	{"properties", "FLUID --temperature T[,T2,...] [--pressure P] [--barometer P] [--json] | --list [--json]", "tell the properties of a fluid", fluidHelp, runProperties},

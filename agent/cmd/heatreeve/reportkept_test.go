@@ -65,7 +65,7 @@ func keep(t *testing.T) string {
 	}
 	b := store.Batch{Beats: []store.Beat{{
 		Through:  keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano(),
-		Readings: keptReadings(tags["TT-201"]),
+		Readings: append(keptReadings(tags["TT-201"]), keptStream(tags)...),
 	}}}
 	for k := range keptMinutes {
 		for i := range s.Loads {
@@ -86,6 +86,24 @@ func keptReadings(tag uint32) (all []store.Reading) {
 	for k := range 4 * keptMinutes {
 		at := keptFrom.Add(time.Duration(k)*15*time.Second + 250*time.Millisecond)
 		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: 403.15 + math.Round(30*math.Sin(float64(k)/7))/100, Stamped: k%500 != 499})
+	}
+	return all
+}
+
+// keptStream are the readings of the rest of the hot water in the last 70 minutes, four a
+// minute.
+func keptStream(tags map[string]uint32) (all []store.Reading) {
+	for k := range 4 * 70 {
+		at := keptFrom.Add((keptMinutes-70)*time.Minute + time.Duration(k)*15*time.Second)
+		sway := func(period float64) float64 { return math.Round(100*math.Sin(float64(k)/period)) / 100 }
+		for i, x := range []struct {
+			tag   string
+			value float64
+		}{
+			{"TT-202", 90.11 + 0.2*sway(5) + 273.15}, {"FT-201", (14.58 + 0.05*sway(3)) * (1.0 / 3600)}, {"PT-201", 1e5*(6.02+0.01*sway(4)) + 100.9e3},
+		} {
+			all = append(all, store.Reading{Tag: tags[x.tag], At: at.Add(time.Duration(i+1) * 1100 * time.Millisecond).UnixNano(), Value: x.value, Stamped: true})
+		}
 	}
 	return all
 }

@@ -1,0 +1,152 @@
+package agent
+
+import (
+	"context"
+	"encoding/json"
+	"fmt"
+	"io"
+	"net/http"
+	"time"
+
+	"heatreeve/agent/site"
+	"heatreeve/agent/working"
+)
+
+const (
+	explainPath = "/explain"
+	// explainTime bounds how long one explanation may take, and beatTime how long the beat
+	// may take to answer.
+	explainTime = time.Minute
+	beatTime    = 10 * time.Second
+	// explanationBytes bounds what is read of an agent's answer.
+	explanationBytes = 1 << 20
+)
+
+// question asks the beat for what the newest figure of a load was worked from.
+type question struct {
+	load   int
+	answer chan<- working.Subject // has room for the one answer
+}
+
+// explains tells the working of figures while the agent runs, one at a time: of the newest
+// it asks the beat, of others the history.
+type explains struct {
+	history   history
+	site      *site.Site
+	run       string // names this run of the agent
+	questions chan<- question
+	turn      chan struct{} // holds one while an explanation is in the making
+}
+
+func newExplains(r *reports, s *site.Site, questions chan<- question) *explains {
+	return &explains{history: r.history, site: s, run: r.run, questions: questions, turn: make(chan struct{}, 1)}
+}
+
+func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
+	tellRun(w, r, s.run)
+	q, err := explanationOf(r.URL.Query())
+	if err != nil {
+		refuse(w, err)
+		return
+	}
+	select {
+	case s.turn <- struct{}{}:
+		defer func() { <-s.turn }()
+	default:
+		http.Error(w, "another explanation is in the making; try again in a while", http.StatusServiceUnavailable)
+		return
+	}
+	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(explainTime + reportStall)) // where it cannot be set, there is no bound
+	ctx, cancel := context.WithTimeout(r.Context(), explainTime)
+	defer cancel()
+	x, err := s.explain(ctx, q)
+	if err != nil {
+		refuse(w, err)
+		return
+	}
+	w.Header().Set("Content-Type", "application/json")
+	e := json.NewEncoder(w)
+	e.SetEscapeHTML(false)
+	_ = e.Encode(x) // who asked has gone
+}
+
+func (s *explains) explain(ctx context.Context, q Explanation) (*working.Working, error) {
+	if q.At != "" {
+		return s.history.explain(ctx, q)
+	}
+	load, err := loadIn(s.site, q.Load)
+	if err != nil {
+		return nil, err
+	}
+	x, err := s.newest(ctx, load)
+	if err != nil {
+		return nil, err
+	}
+	return working.Of(x), nil
+}
+
+// newest asks the beat.
+func (s *explains) newest(ctx context.Context, load int) (x working.Subject, err error) {
+	ctx, cancel := context.WithTimeout(ctx, beatTime)
+	defer cancel()
+	answer := make(chan working.Subject, 1)
+	select {
+	case s.questions <- question{load, answer}:
+	case <-ctx.Done():
+		return x, fmt.Errorf("the agent does not come to answer within %v; it is busy, or stops", beatTime)
+	}
+	select {
+	case x = <-answer:
+		return x, nil
+	case <-ctx.Done():
+		return x, ctx.Err()
+	}
+}
+
+// answer tells what the newest figure was worked from; in the goroutine of the beat.
+func (a *Agent) answer(r *rhythm, q question) {
+	l := r.books.accounts
+	x := working.Subject{Site: a.site, Load: q.load, Basis: l.engine.Basis(q.load), Grounds: l.judges[q.load].Grounds()}
+	if late := a.o.Now().Sub(time.Unix(0, l.engine.Through())); late > time.Minute {
+		x.Notes = append(x.Notes, fmt.Sprintf("event time has come no further: it is %v behind the clock of this machine", late.Round(time.Second)))
+	}
+	q.answer <- x
+}
+
+// Explain tells the working of a figure from a history: a data folder, or a copy of its
+// file. Where an agent runs on the folder, it is asked. What is wrong with q is a
+// [*QueryError].
+func Explain(ctx context.Context, data string, q Explanation) (w *working.Working, err error) {
+	err = reach(data, func(a address) (err error) {
+		w, err = askExplanation(ctx, a, q)
+		return err
+	}, func(h history) (err error) {
+		w, err = h.explain(ctx, q)
+		return err
+	})
+	if err != nil {
+		return nil, err
+	}
+	return w, nil
+}
+
+// askExplanation has the agent at a explain.
+func askExplanation(ctx context.Context, a address, q Explanation) (w *working.Working, err error) {
+	ctx, cancel := context.WithTimeout(ctx, explainTime+10*time.Second)
+	defer cancel()
+	err = a.get(ctx, explainPath, q.values(), func(resp *http.Response) error {
+		body, err := io.ReadAll(io.LimitReader(resp.Body, explanationBytes))
+		switch {
+		case err != nil:
+			return fmt.Errorf("agent at %s: %w", a.hostPort, err)
+		case resp.StatusCode != http.StatusOK:
+			return refusal(resp.StatusCode, body)
+		}
+		w = new(working.Working)
+		if err := json.Unmarshal(body, w); err != nil {
+			return fmt.Errorf("agent at %s: its answer of %d bytes: %w", a.hostPort, len(body), err)
+		}
+		return nil
+	})
+	return w, err
+}

@@ -1,0 +1,90 @@
+package working
+
+import (
+	"time"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
+)
+
+// Subject is what a working is of.
+type Subject struct {
+	Site    *site.Site
+	Load    int // index into Site.Loads
+	Basis   loads.Basis
+	Grounds design.Grounds // of the verdict, by the minutes before
+	Notes   []string
+}
+
+// page is the working of a subject as it is written.
+type page struct {
+	sheet
+	*Subject
+	load     *site.HeatLoad
+	fluid    string // by its name in the file, and what it is
+	citation string
+	at       map[string]term // what formulas write for each input
+}
+
+// Of writes the working of a figure.
+func Of(x Subject) *Working {
+	f := &x.Basis.Figure
+	p := &page{
+		Subject: &x, load: &x.Site.Loads[x.Load], at: make(map[string]term),
+		sheet: sheet{&Working{
+			Site: x.Site.Name, Load: x.Site.Loads[x.Load].Name, At: time.Unix(0, f.At).In(x.Site.Zone),
+			Span: float64(x.Basis.Grid) / 1e9, Factor: CoverageFactor, Idle: f.Idle, Verdict: verdict(&x).String(),
+		}},
+	}
+	name, fluid := p.load.Fluid()
+	if p.fluid, p.citation = name, fluid.Source(); fluid.Name() != name {
+		p.fluid += ", which is " + fluid.Name()
+	}
+	p.write()
+	for _, n := range x.Notes {
+		p.note(n)
+	}
+	return p.Working
+}
+
+func (p *page) write() {
+	f := &p.Basis.Figure
+	if !f.Measured() {
+		p.Fault = f.Fault.String()
+		p.faulty()
+		p.readings("Last readings")
+		p.verdict()
+		return
+	}
+	duty, u := f.Duty, f.Uncertainty
+	p.Duty, p.Uncertainty = &duty, &u
+	p.readings("Readings")
+	p.conversions()
+	switch {
+	case p.Basis.Vessel != nil:
+		p.vessel()
+	case p.Basis.Stream != nil:
+		p.counter()
+		p.stream()
+	default:
+		p.counter()
+		p.idle()
+	}
+	p.note(f.Note)
+	p.verdict()
+}
+
+// title is one that names the fluid.
+func (p *page) title(what string) string { return what + ": " + p.fluid }
+
+// verdict is that of the grounds, unless there is none at this instant.
+func verdict(x *Subject) design.Verdict {
+	switch f := &x.Basis.Figure; {
+	case !f.Measured():
+		return design.Blind
+	case f.Idle:
+		return design.Idle
+	}
+	return x.Grounds.Verdict
+}
