@@ -81,17 +81,22 @@ func (t *topic) want(w *wanted, tag Tag) {
 	}
 }
 
-// most is how many readings one message of the topic may give.
+// most is how many readings one message of the topic may give. A sample of its own takes
+// two bytes at least, a digit and a comma.
 func (t *topic) most() int {
-	n := 0
+	n, longest := 0, 0
+	share := make(map[[2]any]int) // tags that read the same value of the same list
 	for _, w := range t.tags {
-		if w.list != nil {
-			n += MaxSamples
-		} else {
+		if w.list == nil {
 			n++
+			continue
 		}
+		n += MaxSamples
+		of := [2]any{w.list, w.value}
+		share[of]++
+		longest = max(longest, share[of]*MaxPayload/2)
 	}
-	return n
+	return min(n, len(t.tags)+longest)
 }
 
 // slot returns the slot for a pointer into each element.

@@ -181,7 +181,28 @@ func TestSamplesAreAcknowledgedWhole(t *testing.T) {
 	if st := s.Stats().Tags[0]; st.Accepted != 2 || st.Refused[WrongType] != 1 {
 		t.Errorf("%d accepted, refused %v", st.Accepted, st.Refused)
 	}
-	if _, err := New([]Tag{sampled()}, Options{URL: url, ClientID: "x", Buffer: MaxSamples - 1}); err == nil {
-		t.Error("a buffer that the longest message does not fit into was accepted")
+}
+
+// A buffer must have room for the longest message, which has so many bytes at most.
+func TestBufferHoldsTheLongestMessage(t *testing.T) {
+	var many, same []Tag
+	for i := range 200 {
+		tag := sampled()
+		tag.Name = fmt.Sprint(i)
+		same = append(same, tag)
+		tag.Value = fmt.Sprintf("/%d", i)
+		many = append(many, tag)
+	}
+	for _, tt := range []struct {
+		tags   []Tag
+		buffer int
+		ok     bool
+	}{
+		{many[:1], MaxSamples - 1, false}, {many[:1], MaxSamples, true}, {many, 32_000, false}, {many, MaxPayload/2 + 200, true}, {many, 0, true}, {same, 0, false},
+	} {
+		_, err := New(tt.tags, Options{URL: "mqtt://127.0.0.1", ClientID: "x", Buffer: tt.buffer})
+		if (err == nil) != tt.ok {
+			t.Errorf("%d tags in a buffer of %d: %v", len(tt.tags), tt.buffer, err)
+		}
 	}
 }

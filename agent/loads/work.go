@@ -193,14 +193,17 @@ func (q *equation) mass(m *medium, flow, density float64) float64 {
 	if q.CalibratedAt == 0 {
 		return flow
 	}
-	return flow * q.felt(density)
+	return flow * q.Felt(density)
 }
 
-// felt is by how much more or less flows than a meter shows that is calibrated at a
-// density, where the fluid has another.
-func (q *equation) felt(density float64) float64 {
-	if q.FlowKind == VolumeFlow {
-		return math.Sqrt(q.CalibratedAt / density)
+// Felt is what flows over what the meter shows, where the fluid in it has the density: 1
+// but of a stream whose meter is [Stream.CalibratedAt] another.
+func (s *Stream) Felt(density float64) float64 {
+	switch {
+	case s.CalibratedAt == 0:
+		return 1
+	case s.FlowKind == VolumeFlow:
+		return math.Sqrt(s.CalibratedAt / density)
 	}
-	return math.Sqrt(density / q.CalibratedAt)
+	return math.Sqrt(density / s.CalibratedAt)
 }
