@@ -110,8 +110,8 @@ func (m *maltings) says() []message {
 		all = append(all, every(5, m.stamped("brew/return", 65))...)
 	}
 	total := math.Mod(math.Round((washStart+washFlow*s)*100)/100, 100_000)
-	heat := math.Floor(1.02*washFlow*s*washHeat/3.6e6) / 1000 // a meter that shows 2 % more, in steps of 1 kWh
-	all = append(all, every(30, m.stamped("wash/total", total), m.stamped("wash/heat", 812.5+heat),
+	heat := func(s float64) float64 { return math.Floor(1.02 * washFlow * s * washHeat / 3.6e6) } // pulses of a meter that shows 2 % more
+	all = append(all, every(30, m.stamped("wash/total", total), m.stamped("wash/heat", heat(s)-heat(max(0, s-30))),
 		m.stamped("cold/pulses", math.Mod(coldStart+math.Floor(coldPulses*s), 65_536)))...)
 	return append(all, m.changes()...)
 }

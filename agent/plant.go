@@ -30,7 +30,7 @@ func tagOf(t *site.Tag) loads.Tag {
 		Meaning: meaning(t),
 	}
 	if c := t.Counter; c != nil {
-		tag.Counter = &loads.Counter{Modulus: c.Modulus, Largest: c.Largest}
+		tag.Counter = &loads.Counter{Modulus: c.Modulus, Largest: c.Largest, Each: c.Each}
 	}
 	return tag
 }
@@ -41,6 +41,9 @@ func meaning(t *site.Tag) string {
 	kind := "reading"
 	if t.Counter != nil {
 		kind = "count"
+		if t.Counter.Each {
+			kind = "count since the last message"
+		}
 	}
 	if t.Signal != nil {
 		kind = t.Signal.Word

@@ -63,6 +63,7 @@ func TestEngineTakesWhatTheReaderTakes(t *testing.T) {
 		{"pressure: 0 kPag, takes: heat}", "pressure: 0 kPag, takes: heat, corrections: {hold: 2 m3, pump: 3 kW}}"},                                           // of a solid
 		{"stored: {content: 900 L, metal: 650 kg steel, over: 5 min}", "hold: 900 L, stored: {metal: 650 kg steel}"},
 		{"counts: {rolls_over_at: 100 000 m3, largest: 20 m3/h}, max_age: 10 min", "counts: {}, reports: on change, alive: {topic: x, within: 1 min}, max_age: 10 min"},
+		{"counts: {rolls_over_at: 100 000 m3, largest: 20 m3/h}, max_age: 10 min", "counts: {since: last message, largest: 20 m3/h}, max_age: 10 min"},
 		{"content: kettle/level, shell: 2.4 t stainless steel 304", "content: 6 m3"},
 		{"still: 0.5 %", "still: 0 %"},
 		{"content: 6 m3, rigid: true", "content: 180 kg, rigid: true"},

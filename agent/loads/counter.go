@@ -19,8 +19,8 @@ const (
 
 // count is what a counter has told: that Amount passed in [From, To).
 type count struct {
-	At       int64 // stamp of the newest reading told; 0 before the first
-	Value    float64
+	At       int64        // stamp of the newest reading told; 0 before the first
+	Value    float64      // of a counter that tells amounts, their sum so far
 	Before   float64      // the reading before that
 	From, To int64        // grid points that reached the last reading but one, and the last
 	Amount   float64      // in the unit of the register
@@ -94,13 +94,14 @@ func breaks(m quality.Mark) bool {
 // counts brings what the counters have told to g. One that reports by exception tells
 // by its silence that nothing has passed, each time that the silence has lasted for
 // its maximum age. A bad reading is no count: the next good one tells what has passed since
-// the last, unless the bad one says that the register itself may have stood still.
+// the last, unless the bad one says that the register itself may have stood still, or has
+// an amount of its own that nobody knows.
 func (e *Engine) counts(g int64) {
 	for _, b := range e.counters {
 		t := &e.tags[b.tag]
 		switch {
 		case t.Held.bad():
-			if breaks(t.Held.Mark) {
+			if breaks(t.Held.Mark) || e.cfg.Tags[b.tag].adds() {
 				t.Count.Broken = t.Held.Mark
 			}
 		case t.Held.Has && t.Held.At != t.Count.At:
@@ -127,7 +128,10 @@ func (e *Engine) tell(b bounded, g int64) {
 	t, tag := &e.tags[b.tag], &e.cfg.Tags[b.tag]
 	was := t.Count
 	t.Count = count{At: t.Held.At, Value: t.Held.Value, Before: was.Value, From: was.To, To: g, Of: t.Held.Mark, Mark: quality.Worse(t.Held.Mark, was.Of)}
-	c := &t.Count
+	c, from := &t.Count, was.Value
+	if tag.Counter.Each {
+		from, c.Value, c.Mark = 0, was.Value, t.Held.Mark
+	}
 	if was.At == 0 {
 		c.Why = fmt.Sprintf("counter %q has told one count, and a flow takes two", tag.Name)
 		return
@@ -137,16 +141,19 @@ func (e *Engine) tell(b bounded, g int64) {
 		return
 	}
 	span := max(c.At-was.At, c.To-c.From)
-	amount, d := tag.Counter.rise(was.Value, c.Value, tag.Resolution, b.largest, span)
+	amount, d := tag.Counter.rise(from, t.Held.Value, tag.Resolution, b.largest, span)
 	switch d {
 	case risen:
 		c.Amount, c.Known = amount, true
+		if tag.Counter.Each {
+			c.Value += amount
+		}
 	case reset:
 		e.tally[b.tag].Reset++
-		c.Why = fmt.Sprintf("counter %q fell from %.10g to %.10g: what passed is not known", tag.Name, was.Value, c.Value)
+		c.Why = fmt.Sprintf("counter %q fell from %.10g to %.10g: what passed is not known", tag.Name, from, t.Held.Value)
 	case implausible:
 		e.tally[b.tag].Implausible++
-		c.Why = fmt.Sprintf("counter %q rose from %.10g to %.10g in %g s: more than can have passed", tag.Name, was.Value, c.Value, float64(span)/1e9)
+		c.Why = fmt.Sprintf("counter %q rose from %.10g to %.10g in %g s: more than can have passed", tag.Name, from, t.Held.Value, float64(span)/1e9)
 	}
 }
 

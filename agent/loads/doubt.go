@@ -31,6 +31,9 @@ func (t *Tag) doubt(x float64, s *scatter) doubt {
 // be off.
 func (t *Tag) scatters() bool { return !t.OnChange && t.Deadband == 0 && t.Counter == nil }
 
+// adds tells whether the tag's readings are amounts, which add up.
+func (t *Tag) adds() bool { return t.Counter != nil && t.Counter.Each }
+
 // lasting returns the standard uncertainty of what does not change from reading to
 // reading, but for the part r of the accuracy's variance that another input shares.
 func (d *doubt) lasting(shared float64) float64 {

@@ -178,7 +178,11 @@ func (e *Engine) booked() int64 {
 
 // take files one reading, and counts what became of it.
 func (e *Engine) take(r Reading) {
-	switch e.tags[r.Tag].take(sample{r.At, r.Value, r.Mark}, e.booked(), e.cfg.Grid) {
+	grid := e.cfg.Grid
+	if e.cfg.Tags[r.Tag].adds() {
+		grid = 1 // every one of them waits
+	}
+	switch e.tags[r.Tag].take(sample{r.At, r.Value, r.Mark}, e.booked(), grid) {
 	case Taken:
 		if r.Mark != quality.None {
 			e.doubt(r.Tag, r.Mark)
@@ -245,7 +249,7 @@ func (e *Engine) arrive(g int64) {
 func (e *Engine) reach(g int64) {
 	for i := range e.tags {
 		t, tag := &e.tags[i], &e.cfg.Tags[i]
-		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g, tag.MaxAge, tag.scatters()) {
+		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g, tag) {
 			e.touch(i)
 			e.follow(i)
 		}

@@ -105,6 +105,9 @@ type Counter struct {
 	// Largest is the rate above which a difference is no count but a fault, in the unit
 	// of the register a second; 0 for no bound.
 	Largest float64
+	// Each says that a reading is what has passed since the one before, such as pulses, and
+	// no total. Those of one tag are told apart by their stamps alone.
+	Each bool
 }
 
 // Source is where an input comes from: a tag, or a constant where Tag < 0.

@@ -105,8 +105,10 @@ func (t *tagState) remember(at int64) {
 // reach moves the readings stamped at or before g out of the wait and holds the
 // newest; it reports whether the held value changed. Those of a tag whose readings
 // scatter tell how far, from one that is not older than maxAge to the next; so every
-// reading counts that is held at a grid point, and no other, and of those no bad one.
-func (t *tagState) reach(g, maxAge int64, scatters bool) bool {
+// reading counts that is held at a grid point, and no other, and of those no bad one. Of a
+// tag whose readings are amounts, the sum is held, in the order of their stamps, and is no
+// better than the worst of them.
+func (t *tagState) reach(g int64, tag *Tag) bool {
 	n := 0
 	for n < len(t.Pending) && t.Pending[n].At <= g {
 		n++
@@ -114,9 +116,14 @@ func (t *tagState) reach(g, maxAge int64, scatters bool) bool {
 	if n == 0 {
 		return false
 	}
-	for _, s := range t.Pending[:n] {
+	scatters, adds := tag.scatters(), tag.adds()
+	for k, s := range t.Pending[:n] {
 		if scatters {
-			t.Scatter.observe(t.Held, s, maxAge)
+			t.Scatter.observe(t.Held, s, tag.MaxAge)
+		}
+		if adds && k > 0 {
+			s.Value += t.Held.Value
+			s.Mark = quality.Worse(s.Mark, t.Held.Mark)
 		}
 		t.Held = held{At: s.At, Value: s.Value, Has: true, Mark: s.Mark}
 	}

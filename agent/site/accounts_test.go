@@ -78,18 +78,21 @@ func (s *Site) tagNamed(t *testing.T, name string) *Tag {
 func TestCounters(t *testing.T) {
 	s := parse(t, maltings)
 	fq, fp, gq, et := s.tagNamed(t, "FQ"), s.tagNamed(t, "FP"), s.tagNamed(t, "GQ"), s.tagNamed(t, "ET")
-	if fq.Counter == nil || *fq.Counter != (Counter{100000, 0.01}) || fq.MaxAge != 10*time.Minute || fq.Max != 100000 || fq.Min != 0 {
+	if fq.Counter == nil || *fq.Counter != (Counter{Modulus: 100000, Largest: 0.01}) || fq.MaxAge != 10*time.Minute || fq.Max != 100000 || fq.Min != 0 {
 		t.Errorf("FQ = %+v, %+v", fq, fq.Counter)
 	}
 	if fq.Accuracy != (Accuracy{Rel: 0.005}) || fq.Resolution != 0.01 {
 		t.Errorf("FQ: accuracy %+v, resolution %g m³", fq.Accuracy, fq.Resolution)
 	}
 	// A pulse of 2.5 L: 65,536 of them are 163.84 m³.
-	if fp.Unit.Symbol != "L" || fp.Scale != 0.0025 || fp.Resolution != 0.0025 || *fp.Counter != (Counter{163.84, 0.005}) || fp.MaxAge != 15*time.Minute {
+	if fp.Unit.Symbol != "L" || fp.Scale != 0.0025 || fp.Resolution != 0.0025 || *fp.Counter != (Counter{Modulus: 163.84, Largest: 0.005}) || fp.MaxAge != 15*time.Minute {
 		t.Errorf("FP = %+v, %+v", fp, fp.Counter)
 	}
 	if *gq.Counter != (Counter{}) || gq.Resolution != 0 || gq.Max < 1e9 || et.Unit.Dimension != unit.Energy || et.Scale != 3.6e9 {
 		t.Errorf("GQ = %+v, ET = %+v", gq, et)
+	}
+	if each := parse(t, strings.Replace(maltings, "rolls_over_at: 65 536 pulses", "since: last message", 1)).tagNamed(t, "FP"); !each.Counter.Each || each.Counter.Modulus != 0 || each.Scale != 0.0025 || fp.Counter.Each {
+		t.Errorf("since the last message: %+v, %+v; since the start: %+v", each, each.Counter, fp.Counter)
 	}
 	for i, want := range []unit.Dimension{unit.VolumeFlow, unit.VolumeFlow, unit.MolarFlow} {
 		if st := s.Loads[i].Stream; st.FlowKind != want || st.Flow.Constant() {

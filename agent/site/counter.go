@@ -45,7 +45,11 @@ func (r *reader) counter(tag object, v value, t *Tag, known bool) bool {
 	if _, pulses := o.get("pulse"); !pulses {
 		step = 1
 	}
+	o.since(t.Counter)
 	if v, ok := o.get("rolls_over_at"); ok {
+		if t.Counter.Each {
+			v.fault("is of a total; a count since the last message does not roll over")
+		}
 		if at, ok := v.aboveZero(o.countedIn(t)); ok {
 			t.Counter.Modulus, t.Max = at*step, at*step
 		}
@@ -54,6 +58,16 @@ func (r *reader) counter(tag object, v value, t *Tag, known bool) bool {
 		t.Counter.Largest, _ = v.aboveZero(rates[t.Unit.Dimension])
 	}
 	return true
+}
+
+const sinceMessage = "last message"
+
+// since reads from when on a message counts.
+func (o object) since(c *Counter) {
+	if v, ok := o.get("since"); ok {
+		word, _ := v.oneOf("start", sinceMessage)
+		c.Each = word == sinceMessage
+	}
 }
 
 // countedIn is the dimension of the numbers that the counter shows.

@@ -15,7 +15,7 @@ var keys = map[string][]string{
 		"resolution", "deadband", "reports", "alive", "counts"},
 	"tags.*.alive":   {"topic", "within", "online", "offline", "value", "time", "time_unit"},
 	"tags.*.quality": {"at", "code", "good", "uncertain", "bad", "absent"},
-	"tags.*.counts":  {"rolls_over_at", "largest", "pulse"},
+	"tags.*.counts":  {"rolls_over_at", "largest", "pulse", "since"},
 	"loads.*":        {"stream", "vessel", "witness", "design"},
 	"loads.*.stream": {"fluid", "flow", "inlet", "outlet", "pressure", "outlet_pressure", "meter_at", "gives", "takes",
 		"relative_humidity", "dew_point", "wet_bulb", "humidity_ratio", "coil", "margin", "idle_below", "calibrated_at", "pair", "corrections"},

@@ -97,6 +97,7 @@ func (t *Tag) Holds() time.Duration {
 type Counter struct {
 	Modulus float64 // where it begins again at zero; 0 when the file gives none
 	Largest float64 // the rate, a second, above which a difference is a fault; 0 when the file gives none
+	Each    bool    // a message tells what has passed since the one before, and no total
 }
 
 // Liveness is how a topic tells whether a source is alive: by a heartbeat of any payload,

@@ -108,6 +108,11 @@ func unstamped(s *site.Site) []string {
 			all = append(all, fmt.Sprintf("tags.%s: reports on change without a time of its own; what the broker has kept of it is refused, so after a start nothing is known until it changes", t.Name))
 		}
 	}
+	for _, t := range s.Tags {
+		if t.Counter != nil && t.Counter.Each && t.Time == "" {
+			all = append(all, fmt.Sprintf("tags.%s: counts since its last message, without a time of its own; what the broker delivers a second time, as it may after an outage, is counted a second time. Give the message a stamp, and the tag its time", t.Name))
+		}
+	}
 	for i, t := range s.Tags {
 		if l := t.Liveness; l != nil && !l.Kept && t.Time == "" {
 			all = append(all, fmt.Sprintf("%s: has no time of its own; after an outage of the broker or the agent %s taken to have been dead meanwhile", t.Name, told(s, i)))

@@ -42,11 +42,18 @@ broker: {url: mqtt://127.0.0.1}
 tags:
   T1: {topic: a, unit: °C, accuracy: IEC 60751 A, reports: on change, alive: {topic: beat, within: 30 s}}
   T2: {topic: b, unit: °C, value: /v, time: /t, accuracy: IEC 60751 A, reports: on change, alive: {topic: state, online: up, offline: down}}
+  T3: {topic: f, unit: °C, value: /v, time: /t, accuracy: IEC 60751 A}
   ET: {topic: c, unit: MWh, accuracy: 2 % of reading, counts: {}}
+  FQ: {topic: d, unit: pulses, accuracy: 1 % of reading, counts: {pulse: 10 L, since: last message}}
+  GQ: {topic: e, unit: pulses, value: /n, time: /t, accuracy: 1 % of reading, counts: {pulse: 10 L, since: last message}}
 loads:
   bath:
     vessel: {fluid: water, temperature: T1, pressure: 1 bar, content: 3 m3, takes: heat}
     witness: ET
+  tap:
+    stream: {fluid: water, flow: FQ, inlet: T1, outlet: T2, pressure: 3 bar, meter_at: inlet, gives: heat}
+  rinser:
+    stream: {fluid: water, flow: GQ, inlet: T1, outlet: T2, pressure: 3 bar, meter_at: inlet, gives: heat}
 `), 0o600); err != nil {
 		t.Fatal(err)
 	}
@@ -56,7 +63,8 @@ loads:
 	}
 	flat := strings.Join(strings.Fields(out), " ")
 	for _, want := range []string{
-		"note: tags.T2: no load reads it",
+		"note: tags.T3: no load reads it",
+		"note: tags.FQ: counts since its last message, without a time of its own; what the broker delivers a second time",
 		"note: tags.T1: reports on change without a time of its own",
 		"note: beat: has no time of its own; after an outage of the broker or the agent the source of T1 is taken to have been dead",
 	} {
@@ -64,7 +72,7 @@ loads:
 			t.Errorf("does not say %q:\n%s", want, out)
 		}
 	}
-	if n := strings.Count(out, "note:"); n != 3 {
-		t.Errorf("%d notes, want 3:\n%s", n, out)
+	if n := strings.Count(out, "note:"); n != 4 {
+		t.Errorf("%d notes, want 4:\n%s", n, out)
 	}
 }

@@ -25,7 +25,8 @@ import (
 )
 
 // mixed is a plant with a load of each kind: by flow rate with gaps that are bridged, by
-// the register of a volume meter that rolls over, beside a heat meter, and a vessel.
+// the register of a volume meter that rolls over, beside a heat meter, by pulses that are
+// told one by one, and a vessel.
 const mixed = `
 site: Test Bench
 timezone: UTC
@@ -40,6 +41,7 @@ tags:
   TT-3: {topic: bench/tt-3, unit: °C, value: /v, time: /ts, accuracy: IEC 60751 A, max_age: 15 s}
   FT-2: {topic: bench/ft-2, unit: kg/s, value: /v, time: /ts, accuracy: 0.5 % of reading, max_age: 15 s}
   QT-1: {topic: bench/qt-1, unit: m3, value: /v, time: /ts, accuracy: 0.5 % of reading, resolution: 10 L, counts: {rolls_over_at: 10 000 m3, largest: 60 m3/h}, max_age: 5 min}
+  PQ-1: {topic: bench/pq-1, unit: pulses, value: /v, time: /ts, accuracy: 1 % of reading, counts: {pulse: 2.5 L, since: last message}, max_age: 1 min}
   ET-1: {topic: bench/et-1, unit: kWh, value: /v, time: /ts, accuracy: 2 % of reading, counts: {}, max_age: 5 min}
 loads:
   circuit:
@@ -50,6 +52,8 @@ loads:
   metered:
     stream: {fluid: water, flow: QT-1, inlet: TT-1, outlet: TT-2, pressure: 3 barg, meter_at: inlet, gives: heat}
     witness: ET-1
+  pulsed:
+    stream: {fluid: water, flow: PQ-1, inlet: TT-1, outlet: TT-2, pressure: 3 barg, meter_at: inlet, gives: heat}
   tank:
     vessel: {fluid: water, temperature: TT-1, pressure: 1 barg, content: 3 m3, shell: 500 kg steel, over: 2 min, takes: heat}
 `
@@ -63,12 +67,13 @@ type reading struct {
 // stream makes seconds of readings of every tag, each second, from base (Unix
 // milliseconds) on: values that wander, stamps that are not round, up to two and a half
 // seconds out of order, one in fifty published twice; the meters count every ten seconds.
-// For a while the flow is silent, and later everything.
+// Of the pulses each message has an amount of its own. For a while the flow is silent, and
+// later everything.
 func stream(rng *rand.Rand, base int64, seconds int) []reading {
 	tags := []struct {
 		topic     string
 		value, by float64
-	}{{"bench/tt-1", 80, 0.4}, {"bench/tt-2", 55, 0.3}, {"bench/ft-1", 24, 0.5}, {"bench/tt-3", 3, 0.1}, {"bench/ft-2", 9, 0.2}}
+	}{{"bench/tt-1", 80, 0.4}, {"bench/tt-2", 55, 0.3}, {"bench/ft-1", 24, 0.5}, {"bench/tt-3", 3, 0.1}, {"bench/ft-2", 9, 0.2}, {"bench/pq-1", 0, 0}}
 	var all []reading
 	volume, heat := 9997.0, 120.0 // m3, kWh
 	for s := range seconds {
@@ -81,6 +86,9 @@ func stream(rng *rand.Rand, base int64, seconds int) []reading {
 		for i := range tags {
 			x := &tags[i]
 			x.value += x.by * (rng.Float64() - 0.5)
+			if x.topic == "bench/pq-1" {
+				x.value = float64(rng.IntN(6))
+			}
 			at := float64(s) + 0.9*rng.Float64()
 			if s > 300 && s < 340 && i == 2 || s > 700 && s < 760 {
 				continue
@@ -393,7 +401,7 @@ func TestTwoHundredKills(t *testing.T) {
 		a.end(t, syscall.SIGTERM)
 	}
 	quiet()
-	for _, load := range []string{"circuit", "chilled", "metered", "tank"} {
+	for _, load := range []string{"circuit", "chilled", "metered", "pulsed", "tank"} {
 		minutes, report := agents["calm"].accounts(t, load)
 		if heat, n := heatOf(t, minutes); n < seconds/60-3 || !(heat > 0) || math.IsInf(heat, 0) {
 			t.Errorf("%s: %d minutes hold %g J", load, n, heat)
