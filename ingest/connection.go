@@ -17,7 +17,9 @@ import (
 // filtersPerSubscribe bounds one SUBSCRIBE packet; brokers limit its size.
 const filtersPerSubscribe = 200
 
-const denied = 0x80 // return code in a SUBACK: MQTT 3.1.1, section 3.9.3
+// mostQoS is the greatest quality of service. A greater return code in a SUBACK denies
+// the topic (0x80) or is reserved: MQTT 3.1.1, section 3.9.3.
+const mostQoS = 2
 
 // connected subscribes, at every connection: a broker that was restarted may
 // have forgotten the session.
@@ -56,8 +58,10 @@ func (s *Session) subscribe(ctx context.Context, c mqtt.Client) error {
 			return err
 		}
 		for _, t := range chunk {
-			switch code := codes[t.name]; {
-			case code == denied:
+			switch code, answered := codes[t.name]; {
+			case !answered:
+				return fmt.Errorf("subscribe to %q: answered by another packet than there should be", t.name)
+			case code > mostQoS:
 				refused[t.name] = true
 			case code < t.qos:
 				lowered++

@@ -23,6 +23,7 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
+	asked   requests
 	most    int         // bytes of a body that are read; 0: maxPacket
 	message delivery    // at hand
 	begun   bool        // the first packet has come
@@ -49,9 +50,11 @@ func (f *inflow) Read(p []byte) (int, error) {
 }
 
 const ( // packet types: MQTT 3.1.1, table 2.1
-	publish  = 3
-	pingreq  = 12
-	pingresp = 13
+	publish   = 3
+	subscribe = 8
+	subAck    = 9
+	pingreq   = 12
+	pingresp  = 13
 )
 
 // next takes a message, or the fixed header of another packet.
@@ -68,6 +71,15 @@ func (f *inflow) next() error {
 		return f.take(first, length)
 	case length > f.longest():
 		return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", first>>4, length, f.longest())
+	case first>>4 == subAck && f.begun:
+		// Its results are one byte for each topic asked for: they fit the buffer.
+		body, err := f.r.Peek(length)
+		if err != nil && !errors.Is(err, bufio.ErrBufferFull) {
+			return cutShort(err)
+		}
+		if err := f.asked.answered(body); err != nil {
+			return err
+		}
 	}
 	f.begun = true
 	f.body = length

@@ -56,6 +56,7 @@ func (l *link) Write(p []byte) (int, error) {
 	if len(p) > 0 && p[0]>>4 == pingreq {
 		l.in.probed.Store(true)
 	}
+	l.in.asked.note(p)
 	n, err := l.Conn.Write(p)
 	if err != nil {
 		l.failed.CompareAndSwap(nil, &err)

@@ -56,7 +56,7 @@ func TestListenTellsWhyItCannot(t *testing.T) {
 		case *packets.ConnectPacket:
 			return connack(packets.Accepted)
 		case *packets.SubscribePacket:
-			return suback(p, denied)
+			return suback(p, 0x80)
 		}
 		return nil
 	})
