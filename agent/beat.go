@@ -60,6 +60,7 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 		}
 	}
 	a.tellFuture(r.pace.through)
+	a.endMetrics(r, s)
 	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTimer(lookEvery)
 	defer ticker.Stop()
 	defer look.Stop()

@@ -7,6 +7,7 @@ import (
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/ingest"
+	"heatreeve/ingest/sparkplug"
 	"heatreeve/thermo/unit"
 )
 
@@ -114,16 +115,19 @@ func signalsOf(s *site.Site) []ingest.Tag {
 		if l := t.Liveness; l != nil {
 			tag.Liveness = &ingest.Liveness{Online: l.Online, Offline: l.Offline, Kept: l.Kept}
 		}
+		if m := t.Metric; m != nil {
+			tag.Metric = &ingest.Metric{Source: sparkplug.Source{Group: m.Group, Node: m.Node, Device: m.Device}, Name: m.Name}
+		}
 		tags = append(tags, tag)
 	}
 	return tags
 }
 
-// hasStamps tells whether a tag that the file declares is stamped at its source. A sign of
-// life alone does not move event time.
+// hasStamps tells whether a tag that the file declares is stamped at its source, as every
+// Sparkplug metric is. A sign of life alone does not move event time.
 func hasStamps(s *site.Site) bool {
 	for _, t := range s.Tags[:s.Declared()] {
-		if t.Time != "" {
+		if t.Time != "" || t.Metric != nil {
 			return true
 		}
 	}

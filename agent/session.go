@@ -14,7 +14,7 @@ import (
 func newSession(s *site.Site, o Options) (*ingest.Session, error) {
 	options := connectionOf(s.Broker)
 	options.Ahead, options.Log, options.Now = s.Timing.Ahead, o.Log, o.Now
-	options.Subscribe = s.Broker.Subscribe
+	options.Subscribe, options.Rebirths, options.Host = s.Broker.Subscribe, s.Broker.Rebirths, s.Broker.HostID
 	if s.Broker.Availability != "" {
 		options.Presence = ingest.Words(s.Broker.Availability, site.Online, site.Offline)
 	}

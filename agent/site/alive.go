@@ -19,7 +19,9 @@ type told struct {
 
 // reports reads how a tag's source reports.
 func (r *reader) reports(o object, t *Tag) {
-	o.needs("reports", "alive")
+	if t.Metric == nil {
+		o.needs("reports", "alive")
+	}
 	o.needs("alive", "reports")
 	if v, ok := o.get("reports"); ok {
 		_, t.OnChange = v.oneOf("on change")
@@ -27,8 +29,11 @@ func (r *reader) reports(o object, t *Tag) {
 			age.fault("stands beside reports: on change, by which a reading holds as long as its source is alive; leave it out")
 		}
 	}
-	if v, ok := o.get("alive"); ok {
+	if v, ok := o.get("alive"); ok && t.Metric == nil {
 		t.Alive = r.alive(v, t)
+	}
+	if t.OnChange && t.Metric != nil {
+		t.Alive = r.aliveBySparkplug(o.value, t)
 	}
 }
 
@@ -99,15 +104,23 @@ func (l *told) same(other *Tag) bool {
 	return *l.Liveness == *other.Liveness && l.MaxAge == other.MaxAge && l.Value == other.Value && l.Time == other.Time && l.TimeFormat == other.TimeFormat
 }
 
-// name gives the tag of the topic its name, which is that of the topic, and of the
-// broker where it is not the main one.
+// name gives the tag of the topic, or Sparkplug source, its name, which is that of the topic
+// or source, and of the broker where it is not the main one.
 func (l *told) name(broker string) {
 	l.Name = l.Topic
+	if l.Metric != nil {
+		l.Name = l.Metric.Source()
+	}
+	length := len(l.Name)
 	if broker != "" {
 		l.Name += " (" + broker + ")"
 	}
 	if len(l.Name) > maxLabel {
-		l.at.fault("the topic is %d bytes long; its source is shown under its name, of at most %d", len(l.Topic), maxLabel)
+		shown := "its source"
+		if l.Metric != nil {
+			shown = "it"
+		}
+		l.at.fault("the %s is %d bytes long; %s is shown under its name, of at most %d", l.what(), length, shown, maxLabel)
 		return
 	}
 	l.at.label(l.Name)
@@ -124,13 +137,21 @@ func (r *reader) appendLiveness(sources map[origin]string) {
 	}
 	for _, l := range r.told {
 		if _, clash := r.tags[l.Name]; clash {
-			l.at.fault("%q is the name of a tag too, and the liveness of the topic is shown under it; rename the tag", l.Name)
+			l.at.fault("%q is the name of a tag too, and the liveness of the %s is shown under it; rename the tag", l.Name, l.what())
 		}
-		if other, clash := sources[origin{l.Broker, l.Topic, l.Value}]; clash && l.Liveness.Online != "" {
+		if other, clash := sources[l.from()]; clash && l.Liveness.Online != "" {
 			l.at.fault("tag %q reads a number where %s", other, l.says())
 		}
 		r.site.Tags = append(r.site.Tags, l.Tag)
 	}
+}
+
+// what tells by what the liveness comes.
+func (l *told) what() string {
+	if l.Metric != nil {
+		return "Sparkplug source"
+	}
+	return "topic"
 }
 
 func (l *told) says() string {

@@ -28,6 +28,8 @@ type Broker struct {
 	PasswordFile, PasswordEnv string   // at most one of them
 	Subscribe                 []string // filters that end in #, in place of the topics that they cover; they do not overlap
 	Availability              string   // topic on which the agent shows whether it is connected; "" for none
+	Rebirths                  bool     // Sparkplug edge nodes may be asked for their births
+	HostID                    string   // of this Sparkplug host application; "": it is none, and only reads
 	Queue                     int      // messages that the broker keeps for a client that takes none; default 1000
 }
 
@@ -83,6 +85,12 @@ func (r *reader) broker(v value, name string) Broker {
 	}
 	if v, ok := o.get("subscribe"); ok {
 		b.Subscribe = filters(v)
+	}
+	if v, ok := o.get("commands"); ok {
+		_, b.Rebirths = v.oneOf("rebirth")
+	}
+	if v, ok := o.get("host_id"); ok {
+		b.HostID = hostID(v)
 	}
 	o.checkBroker(b)
 	return b

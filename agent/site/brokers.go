@@ -109,10 +109,11 @@ func (r *reader) checkTopics() {
 		}
 		at := r.brokerAt[i]
 		for _, f := range b.Subscribe {
-			if !slices.ContainsFunc(r.site.Tags, func(t Tag) bool { return t.Broker == i && below(t.Topic, f) }) {
+			if !slices.ContainsFunc(r.site.Tags, func(t Tag) bool { return t.Broker == i && t.within(f) }) {
 				at.under("subscribe").fault("%q covers no topic of a tag", clip(f))
 			}
 		}
+		r.checkHost(i, b, at)
 		for _, t := range r.site.Tags {
 			if b.Availability != "" && t.Broker == i && t.Topic == b.Availability {
 				at.under("availability").fault("%q is the topic of tag %q; what the agent says itself is no reading", clip(t.Topic), t.Name)

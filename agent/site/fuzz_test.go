@@ -67,7 +67,7 @@ func checkFigures(t *testing.T, s *Site) {
 		if l := tag.Samples; l != nil && (tag.Time == "" || tag.Value == "" && l.Step <= 0) {
 			t.Errorf("tag %q: samples %+v without stamps or values", tag.Name, l)
 		}
-		if !(tag.Min < tag.Max) || tag.Topic == "" || a.Abs+a.Rel <= 0 && tag.Liveness == nil || tag.MaxAge <= 0 || tag.Scale <= 0 ||
+		if !(tag.Min < tag.Max) || (tag.Topic == "") == (tag.Metric == nil) || a.Abs+a.Rel <= 0 && tag.Liveness == nil || tag.MaxAge <= 0 || tag.Scale <= 0 ||
 			tag.OnChange && s.Tags[tag.Alive].Liveness == nil {
 			t.Errorf("tag %+v", tag)
 		}

@@ -79,8 +79,10 @@ type Tag struct {
 	// the source is alive, which the tag at the index Alive of Site.Tags tells.
 	OnChange bool
 	Alive    int
+	// Metric is set of a tag that reads one of a Sparkplug B namespace in place of a topic.
+	Metric *Metric
 	// Liveness is set of a tag that no load may choose: it stands behind those that the
-	// file declares, under the name of its topic, one for each such topic.
+	// file declares, under the name of its topic or Sparkplug source, one for each.
 	Liveness *Liveness
 }
 
@@ -91,6 +93,18 @@ func (t *Tag) Holds() time.Duration {
 		return 0
 	}
 	return t.MaxAge
+}
+
+// Metric is one that an edge node, or with Device a device behind it, publishes by
+// Sparkplug B; of a tag of [Liveness] it is the source itself, without a name.
+type Metric struct{ Group, Node, Device, Name string }
+
+// Source is the source of the metric, as "group/node" or "group/node/device".
+func (m *Metric) Source() string {
+	if m.Device == "" {
+		return m.Group + "/" + m.Node
+	}
+	return m.Group + "/" + m.Node + "/" + m.Device
 }
 
 // Counter is a register that only counts up, in the SI unit of its tag: m³, kg, mol or J.

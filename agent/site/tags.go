@@ -33,9 +33,9 @@ func (r *reader) readTags(o object) {
 		t := r.tag(e)
 		r.tags[e.name] = len(r.site.Tags)
 		r.site.Tags = append(r.site.Tags, t)
-		source := origin{t.Broker, t.Topic, t.place()}
-		if other, twice := sources[source]; twice && t.Topic != "" {
-			e.fault("reads the same value of the same topic as tag %q", other)
+		source := t.from()
+		if other, twice := sources[source]; twice && source.topic != "" {
+			e.fault("reads %s as tag %q", t.same(), other)
 			continue
 		}
 		sources[source] = e.name
@@ -68,9 +68,12 @@ func (v value) noQuantity(name string) {
 func (r *reader) tag(e entry) Tag {
 	o := e.object("tags.*")
 	t := Tag{Name: e.name, MaxAge: time.Minute, Min: math.Inf(-1), Max: math.Inf(1), QoS: 1}
-	if v, ok := o.need("topic", "the MQTT topic of the tag"); ok {
+	if _, ok := o.get("sparkplug"); ok {
+		t.Metric = o.metric()
+	} else if v, ok := o.need("topic", "the MQTT topic of the tag, or sparkplug and metric in its stead", "sparkplug"); ok {
 		t.Topic = topic(v)
 	}
+	o.needs("metric", "sparkplug")
 	t.Broker = r.chosenBroker(o)
 	u, ok := o.need("unit", "the unit of the numbers in the payload, such as °C, m3/h, barg")
 	known := ok && r.tagUnit(u, &t)
@@ -94,7 +97,9 @@ func (r *reader) tag(e entry) Tag {
 	if t.MaxAge < r.site.Timing.Grid {
 		e.fault("max_age %v is shorter than the grid of %v", t.MaxAge, r.site.Timing.Grid)
 	}
-	o.payload(&t)
+	if t.Metric == nil {
+		o.payload(&t)
+	}
 	o.signal(&t, known)
 	if known {
 		o.steps(&t)
