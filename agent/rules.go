@@ -55,6 +55,9 @@ func sourcesOf(l *loads.Load) (all []*loads.Source) {
 	if l.HasWitness {
 		all = append(all, &l.Witness)
 	}
+	if l.HasRunning {
+		all = append(all, &l.Running)
+	}
 	if v := l.Vessel; v != nil {
 		return append(all, &v.Temperature, &v.Pressure, &v.Content)
 	}
@@ -75,18 +78,30 @@ func sourcesOf(l *loads.Load) (all []*loads.Source) {
 // these tell only where in the site file a tag stands.
 func named(h hash.Hash, tags []loads.Tag, sources []*loads.Source) {
 	for _, src := range sources {
-		for i := src.Tag; i >= 0; {
-			t := tags[i]
-			if i = -1; t.OnChange {
-				i = t.Alive
+		if src.Tag >= 0 {
+			namedTag(h, tags, src.Tag)
+			if t := &tags[src.Tag]; t.HasBeside {
+				namedTag(h, tags, t.Beside)
 			}
-			if t.Counter != nil {
-				fmt.Fprintf(h, "%+v ", *t.Counter)
-			}
-			t.Alive, t.Counter = 0, nil
-			fmt.Fprintf(h, "%+v\n", t)
 		}
 		src.Tag = min(src.Tag, 0)
+	}
+}
+
+// namedTag writes a tag, and that of its source's signs of life.
+func namedTag(h hash.Hash, tags []loads.Tag, i int) {
+	t := tags[i]
+	if t.Counter != nil {
+		fmt.Fprintf(h, "%+v ", *t.Counter)
+	}
+	if t.Screen != nil {
+		fmt.Fprintf(h, "%+v ", *t.Screen)
+	}
+	alive := t.Alive
+	t.Alive, t.Beside, t.Counter, t.Screen = 0, 0, nil, nil
+	fmt.Fprintf(h, "%+v\n", t)
+	if t.OnChange {
+		namedTag(h, tags, alive)
 	}
 }
 

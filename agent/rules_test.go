@@ -5,6 +5,7 @@ import (
 	"testing"
 
 	"heatreeve/agent/loads"
+	"heatreeve/ingest/screen"
 	"heatreeve/thermo"
 	"heatreeve/thermo/air"
 	"heatreeve/thermo/gas"
@@ -58,17 +59,18 @@ func TestRulesOfLoad(t *testing.T) {
 	of := func(change func(c *loads.Config)) [32]byte {
 		tank := loads.Load{Vessel: &loads.Vessel{Fluid: water.Liquid(), Temperature: loads.FromTag(2), Content: loads.Constant(5)}}
 		cfg := loads.Config{Grid: sec, Tags: []loads.Tag{
-			{Name: "FQ", OnChange: true, Alive: 1, Counter: &loads.Counter{Modulus: 10}}, {Name: "LIFE"}, {Name: "TI"}, {Name: "other"},
+			{Name: "FQ", OnChange: true, Alive: 1, Counter: &loads.Counter{Modulus: 10}}, {Name: "LIFE"}, {Name: "TI", Beside: 3, HasBeside: true, Screen: &screen.Limits{Fastest: 1}}, {Name: "other"},
 		}, Loads: []loads.Load{{Stream: loads.Stream{Fluid: water.Liquid(), Flow: loads.FromTag(0), Inlet: loads.FromTag(2)}}, tank}}
 		change(&cfg)
 		return rulesOfLoad(&cfg, 0)
 	}
 	same := of(func(*loads.Config) {})
 	for name, change := range map[string]func(c *loads.Config){
-		"another tag's bound": func(c *loads.Config) { c.Tags[3].MaxAge = 7 },
+		"another tag's bound": func(c *loads.Config) { c.Tags = append(c.Tags, loads.Tag{MaxAge: 7}) },
 		"the other load":      func(c *loads.Config) { c.Loads[1].Vessel.Shell = 7 },
 		"the places of tags": func(c *loads.Config) {
 			c.Tags = append([]loads.Tag{{Name: "new"}}, c.Tags...)
+			c.Tags[3].Beside = 4
 			c.Tags[1].Alive, c.Loads[0].Stream.Flow.Tag, c.Loads[0].Stream.Inlet.Tag = 2, 1, 3
 			c.Loads[0].Stream.Outlet.Tag, c.Loads[0].Stream.Pressure.Tag, c.Loads[0].Stream.OutletPressure.Tag = 1, 1, 1
 		},
@@ -85,6 +87,9 @@ func TestRulesOfLoad(t *testing.T) {
 		"what is counted":   func(c *loads.Config) { c.Tags[0].Meaning = "litres" },
 		"a roll-over":       func(c *loads.Config) { c.Tags[0].Counter.Modulus = 7 },
 		"a sign of life":    func(c *loads.Config) { c.Tags[1].MaxAge = 7 },
+		"a test":            func(c *loads.Config) { c.Tags[2].Screen.Fastest = 2 },
+		"a sensor beside":   func(c *loads.Config) { c.Tags[3].MaxAge = 7 },
+		"a pump":            func(c *loads.Config) { c.Loads[0].HasRunning = true },
 		"a witness":         func(c *loads.Config) { c.Loads[0].HasWitness = true },
 		"another tag":       func(c *loads.Config) { c.Loads[0].Stream.Inlet.Tag = 3 },
 		"the kind of load":  func(c *loads.Config) { c.Loads[0].Vessel = c.Loads[1].Vessel },

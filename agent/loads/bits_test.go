@@ -8,6 +8,7 @@ import (
 	"pgregory.net/rapid"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/screen"
 )
 
 // course draws ten minutes of readings of the three tags, stamped irregularly,
@@ -16,8 +17,12 @@ func course(t *rapid.T) []Reading {
 	var all []Reading
 	for tag := range 3 {
 		s := rapid.Int64Range(0, 5e9).Draw(t, "first")
+		calm := rapid.Bool().Draw(t, "calm")
 		for s < 600e9 {
 			v := rapid.Float64Range(1, 3).Draw(t, "value")
+			if calm && rapid.IntRange(0, 15).Draw(t, "odd") != 9 {
+				v = 2 + v/1000
+			}
 			if tag != flow {
 				v = 300 + 30*v
 			}
@@ -56,9 +61,10 @@ func run(e *Engine, readings []Reading, cut func() int) {
 	e.Advance(Beat{nil, epoch + 700*second}, nil)
 }
 
-func fingerprint(e *Engine) []uint64 {
-	var bits []uint64
-	for _, l := range e.Snapshot().Loads {
+func fingerprint(e *Engine) []uint64 { return bitsOf(e.Snapshot()) }
+
+func bitsOf(s Snapshot) (bits []uint64) {
+	for _, l := range s.Loads {
 		for _, v := range []float64{l.Given, l.Taken, l.Figure.Duty, l.Figure.Uncertainty, l.Figure.Rate, l.Figure.Random, l.Figure.Variance, l.Figure.Rate, l.BridgedGiven, l.BridgedTaken, l.Means[0].Duty, l.Means[2].Duty, l.Means[2].Coverage} {
 			bits = append(bits, math.Float64bits(v))
 		}
@@ -67,10 +73,26 @@ func fingerprint(e *Engine) []uint64 {
 	return bits
 }
 
+// screenAll has the tags of the plant tested in every way, at limits that course comes to.
+func screenAll(cfg *Config) {
+	for i, rate := range []float64{flow: 1, inlet: 30, outlet: 30} {
+		t := &cfg.Tags[i]
+		t.Resolution = rate / 100
+		t.Screen = &screen.Limits{Fastest: rate, StuckAfter: 20 * second, Spikes: true, Resolution: t.Resolution, Gap: t.MaxAge}
+	}
+	cfg.Tags[inlet].Screen.Low, cfg.Tags[inlet].Screen.High, cfg.Tags[inlet].Screen.HasRange = 330, 380, true
+	cfg.Tags[flow].Screen.Fastest, cfg.Tags[inlet].Screen.Fastest = 0, 3
+	cfg.Tags[outlet].Screen.Fastest, cfg.Tags[outlet].Screen.Resolution = 0, 3
+	cfg.Tags[inlet].Accuracy.Abs, cfg.Tags[inlet].Beside, cfg.Tags[inlet].HasBeside = 2, outlet, true
+}
+
 // Order within the lateness, the cut into beats and a restart change no bit.
 func TestSameReadingsSameBits(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		cfg := plant(liquid)
+		if rapid.Bool().Draw(t, "screened") {
+			screenAll(&cfg)
+		}
 		readings := course(t)
 		plain, _ := New(cfg)
 		run(plain, readings, func() int { return 1 })

@@ -32,6 +32,11 @@ func (c *Config) checkTag(i int) error {
 	if n := t.Counter; n != nil && !(positive(n.Modulus) && positive(n.Largest)) {
 		return fmt.Errorf("counter that rolls over at %g and counts at most %g a second: both must be finite and not negative", n.Modulus, n.Largest)
 	}
+	if t.HasBeside {
+		if j := t.Beside; j < 0 || j >= len(c.Tags) || j == i || t.Counter != nil || c.Tags[j].Counter != nil {
+			return fmt.Errorf("sensor beside it has index %d: another tag that is no counter is wanted, beside one that is none", j)
+		}
+	}
 	if !t.OnChange {
 		return nil
 	}
@@ -48,6 +53,9 @@ func (c *Config) checkTag(i int) error {
 func (l *Load) checkCounters(tags []Tag) error {
 	if l.HasWitness && (l.Witness.Tag < 0 || tags[l.Witness.Tag].Counter == nil) {
 		return errors.New("witness that is no counter: the register of a heat meter is wanted")
+	}
+	if l.HasRunning && (l.Running.Tag < 0 || l.Vessel != nil || l.counter(tags) >= 0) {
+		return errors.New("running: the tag of a pump is wanted, and a stream whose flow is a rate")
 	}
 	if c := &l.Stream.Corrections; l.counter(tags) >= 0 && (c.HasPump || c.Hold > 0 || c.Stored > 0) {
 		return errors.New("corrections of a stream whose flow is counted: a flow at every instant is wanted for them")

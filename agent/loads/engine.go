@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/screen"
 )
 
 // Windows are the lengths of the rolling means, ns, in the order of
@@ -28,7 +29,8 @@ type Engine struct {
 	follows   [][]follow  // trends that each tag's readings go into
 	holds     []int       // loads with a hold
 	counters  []bounded
-	renewed   []bool // tags whose numbers meant something else in the restored state
+	besides   [][]int // the sensors beside each tag; nil where there are none
+	renewed   []bool  // tags whose numbers meant something else in the restored state
 }
 
 // Tally counts what became of a tag's readings.
@@ -64,7 +66,11 @@ func New(cfg Config) (*Engine, error) {
 		if cfg.Tags[i].OnChange {
 			e.onChange = append(e.onChange, i)
 		}
+		if cfg.Tags[i].Screen != nil {
+			e.tags[i].Screen = new(screen.State)
+		}
 	}
+	e.enlistBesides()
 	for i := range e.loads {
 		q, err := cfg.Loads[i].equation()
 		if err != nil {
@@ -82,12 +88,27 @@ func New(cfg Config) (*Engine, error) {
 	return e, nil
 }
 
-// enlist notes which tags a load reads.
+// enlist notes which tags a load reads, and which it looks at beside these.
 func (e *Engine) enlist(load int) {
 	for _, src := range e.equations[load].needs {
-		if src.Tag >= 0 && !slices.Contains(e.users[src.Tag], load) {
-			e.users[src.Tag] = append(e.users[src.Tag], load)
+		if src.Tag < 0 {
+			continue
 		}
+		e.use(src.Tag, load)
+		if e.besides != nil {
+			for _, other := range e.besides[src.Tag] {
+				e.use(other, load)
+			}
+		}
+	}
+	if l := &e.cfg.Loads[load]; l.HasRunning {
+		e.use(l.Running.Tag, load)
+	}
+}
+
+func (e *Engine) use(tag, load int) {
+	if !slices.Contains(e.users[tag], load) {
+		e.users[tag] = append(e.users[tag], load)
 	}
 }
 
@@ -248,8 +269,7 @@ func (e *Engine) arrive(g int64) {
 // depend on it.
 func (e *Engine) reach(g int64) {
 	for i := range e.tags {
-		t, tag := &e.tags[i], &e.cfg.Tags[i]
-		if len(t.Pending) > 0 && t.Pending[0].At <= g && t.reach(g, tag) {
+		if p := e.tags[i].Pending; len(p) > 0 && p[0].At <= g && e.hold(i, g) {
 			e.touch(i)
 			e.follow(i)
 		}

@@ -13,6 +13,7 @@ type held struct {
 	Value float64
 	Has   bool
 	Mark  quality.Mark
+	Aside bool // newer readings were set aside, the newest of them at At
 }
 
 // bad reports whether the reading says that there is no value.
@@ -40,6 +41,7 @@ func (e *Engine) stream(load int, g int64, s *steps) Figure {
 		f.Idle = true
 		return f
 	}
+	e.pumped(load, &f, s)
 	if x.Flow < 0 {
 		return f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.Flow))
 	}
@@ -59,6 +61,7 @@ func (e *Engine) stream(load int, g int64, s *steps) Figure {
 	}
 	f = q.figure(f, s)
 	q.storedSpread(&f, s)
+	e.order(load, &f, s)
 	return f
 }
 
@@ -120,6 +123,9 @@ func (e *Engine) read(f *Figure, src Source, value *float64, d *doubt) bool {
 		if h.bad() {
 			*f = f.unusable(tag.Name)
 			return false
+		}
+		if e.besides != nil {
+			e.compare(f, src.Tag)
 		}
 	}
 	*value, *d = h.Value, tag.doubt(h.Value, &e.tags[src.Tag].Scatter)

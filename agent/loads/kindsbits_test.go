@@ -48,6 +48,10 @@ func TestKindsSameBits(t *testing.T) {
 	seen := make(map[string]map[Fault]int) // of each load
 	rapid.Check(t, func(t *rapid.T) {
 		cfg := kinds(rapid.Bool().Draw(t, "on change"))
+		cfg.Loads[2].Vessel.Still = 1e-4
+		if rapid.Bool().Draw(t, "screened") {
+			screenAll(&cfg)
+		}
 		if i := rapid.IntRange(0, len(cfg.Loads)).Draw(t, "alone"); i < len(cfg.Loads) {
 			cfg.Loads = cfg.Loads[i : i+1]
 		}
@@ -87,7 +91,7 @@ func TestKindsSameBits(t *testing.T) {
 			t.Fatalf("by other beats and with restarts: %x, want %x", got, want)
 		}
 	})
-	for name, faults := range map[string][]Fault{"boiler": {NoFault, Stale}, "corrected": {NoFault, Stale, Fitting}, "tank": {NoFault, Stale, Fitting, Moving}} {
+	for name, faults := range map[string][]Fault{"boiler": {NoFault, Stale, BadReading}, "corrected": {NoFault, Stale, BadReading, Fitting}, "tank": {NoFault, Stale, BadReading, Fitting, Moving}} {
 		for _, f := range faults {
 			if seen[name][f] == 0 {
 				t.Errorf("%s: fault %q was never seen", name, f)

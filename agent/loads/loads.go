@@ -34,6 +34,7 @@ import (
 	"math"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/screen"
 	"heatreeve/thermo"
 )
 
@@ -90,6 +91,14 @@ type Tag struct {
 	Alive    int
 	// Counter is set where the tag is a register that only rises.
 	Counter *Counter
+	// Screen is what its readings are tested against in the order of their stamps, nil for
+	// nothing. Of those that fall to one grid point only the last is.
+	Screen *screen.Limits
+	// Beside is the index of a second sensor of the same quantity, where HasBeside. Where both
+	// read and differ by more than two standard uncertainties of the difference, what is
+	// worked from either is [quality.Disagrees].
+	Beside    int
+	HasBeside bool
 	// Meaning tells what the tag's numbers are of. What was read under another is not taken
 	// up by [Engine.Restore]: the difference of two counts of which one was of something
 	// else, or in another unit, is no amount.
@@ -157,6 +166,10 @@ type Stream struct {
 	// Gives is true where the stream gives heat up: duty is then
 	// m·(h_in − h_out), otherwise m·(h_out − h_in).
 	Gives bool
+	// BothWays says that the stream is warmed at times and cooled at others. Otherwise the
+	// figure is [quality.WrongOrder] where the inlet is on the wrong side of the outlet by
+	// more than two standard uncertainties of their difference.
+	BothWays bool
 	// Humidity of the gas at the inlet, in the unit of its kind; only with a
 	// [thermo.Humid] fluid. HumidityKind is 0 where it is not measured.
 	Humidity     Source
@@ -275,6 +288,11 @@ type Load struct {
 	// J, that the load is compared with. It takes no part in any figure.
 	Witness    Source
 	HasWitness bool
+	// Running is the tag of the pump, where HasRunning: 0 while it stands. A flow of the
+	// stream beyond its IdleBelow, and beyond two of its standard uncertainties, is then
+	// [quality.NotZero].
+	Running    Source
+	HasRunning bool
 }
 
 // gives tells which way the load serves.

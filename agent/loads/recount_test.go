@@ -43,12 +43,13 @@ type known struct {
 	Reading
 	has, usable bool
 	variance    float64 // of its integral over a second, by what changes from reading to reading
+	noise       float64 // variance of one reading by the same
 }
 
 // column is what a tag tells at all grid points.
 func (o *recount) column(src Source) (all []known) {
 	var before Reading
-	var n, swept, steps float64
+	var n, swept, steps, square float64
 	lapse := int64(0)
 	for g := o.from; g < o.to; g += o.cfg.Grid {
 		if src.Tag < 0 {
@@ -60,6 +61,7 @@ func (o *recount) column(src Source) (all []known) {
 		if step := r.At - before.At; has && step > 0 {
 			if before.At != 0 && step < tag.MaxAge && !isBad(before) && !isBad(r) {
 				n = min(n+1, 16)
+				square += ((r.Value-before.Value)*(r.Value-before.Value) - square) / n
 				d := (r.Value - before.Value) * float64(step) / 1e9
 				swept += (d*d - swept) / n
 				steps += (float64(step)/1e9 - steps) / n
@@ -76,7 +78,7 @@ func (o *recount) column(src Source) (all []known) {
 		}
 		k.usable = k.usable && (tag.Counter != nil || !isBad(r))
 		if n > 0 && !tag.OnChange && tag.Deadband == 0 && tag.Counter == nil {
-			k.variance = swept / 2 / steps
+			k.variance, k.noise = swept/2/steps, square/2
 		}
 		all = append(all, k)
 	}

@@ -38,6 +38,7 @@ func anyPlant(r *rand.Rand) Config {
 		l := Load{Name: fmt.Sprint(i), Stream: plant(liquid).Loads[0].Stream, HasWitness: r.IntN(4) > 0}
 		s := &l.Stream
 		s.IdleBelow, s.Gives, s.Pair = 0.1, r.IntN(2) == 0, 0.45*float64(r.IntN(3))
+		s.BothWays = r.IntN(2) == 0
 		s.Flow = from(mixFlow, mixTold, mixCount, mixCount, anyCount, anyCount)
 		s.Inlet, s.Outlet = from(mixInlet, mixOutlet, anyTemperature), from(mixInlet, mixOutlet, anyTemperature)
 		l.Witness = from(mixEnergy, anyEnergy, anyEnergy)

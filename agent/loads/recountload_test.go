@@ -85,6 +85,12 @@ func (o *recount) work(p *instant, s *Stream, m float64, flow, in, out known) {
 		PartOutlet: -byT * math.Sqrt((1-s.Pair)*uOut*uOut+aloneOut),
 		PartPair:   byT * (uIn - uOut) * math.Sqrt(s.Pair),
 	}
+	wrong := out.Value - in.Value
+	if !s.Gives {
+		wrong = -wrong
+	}
+	variance := uIn*uIn + uOut*uOut - 2*s.Pair*uIn*uOut + aloneIn + aloneOut + in.noise + out.noise
+	p.uncertain = p.uncertain || !s.BothWays && variance > 0 && wrong > 0 && wrong*wrong > 4*variance
 	p.variance = byFlow*byFlow*flow.variance + byT*byT*(in.variance+out.variance)
 }
 

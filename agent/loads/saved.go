@@ -66,6 +66,9 @@ func (e *Engine) Restore(state []byte) error {
 		t, ok := s.Tags[tag.Name]
 		switch {
 		case ok && t.of(tag):
+			if tag.Screen == nil || t.Screen == nil {
+				t.Screen = e.tags[i].Screen
+			}
 			e.tags[i] = t
 		case ok:
 			e.renewed[i], renewed[tag.Name] = true, true

@@ -33,10 +33,11 @@ type scatter struct {
 const steadyAfter = 16
 
 // observe takes in the reading after the one that was held, unless that had run out of
-// age: what came after it is another story. So is what comes beside a bad reading. A difference whose square is beyond all numbers
+// age: what came after it is another story. So is what comes beside a bad
+// reading, or after one that was set aside. A difference whose square is beyond all numbers
 // is none, since no mean would come back from it.
 func (s *scatter) observe(before held, next sample, maxAge int64) {
-	if !before.Has || before.bad() || next.bad() || next.At-before.At >= maxAge {
+	if !before.Has || before.bad() || before.Aside || next.bad() || next.At-before.At >= maxAge {
 		return
 	}
 	d, step := next.Value-before.Value, float64(next.At-before.At)*1e-9

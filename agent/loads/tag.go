@@ -5,6 +5,7 @@ import (
 	"sort"
 
 	"heatreeve/ingest/quality"
+	"heatreeve/ingest/screen"
 )
 
 const (
@@ -42,11 +43,12 @@ type tagState struct {
 	// Lapse is the newest grid point at which an on-change tag had no sign of life: a
 	// reading from before it does not hold. 0 for none.
 	Lapse    int64
-	Count    count    // of a counter
-	Meaning  string   // of the tag when it was saved; empty in states from before it was told
-	standing standing // of an on-change tag at the grid point last computed
-	recent   []int64  // ring of stamps taken
-	next     int      // where the ring is written next
+	Count    count         // of a counter
+	Screen   *screen.State // nil where nothing is tested
+	Meaning  string        // of the tag when it was saved; empty in states from before it was told
+	standing standing      // of an on-change tag at the grid point last computed
+	recent   []int64       // ring of stamps taken
+	next     int           // where the ring is written next
 }
 
 // of reports whether the state is one of readings that mean what those of the tag do.
@@ -102,13 +104,14 @@ func (t *tagState) remember(at int64) {
 	t.next = (t.next + 1) % maxRecent
 }
 
-// reach moves the readings stamped at or before g out of the wait and holds the
-// newest; it reports whether the held value changed. Those of a tag whose readings
-// scatter tell how far, from one that is not older than maxAge to the next; so every
+// hold moves the readings of a tag stamped at or before g out of the wait, tests them, and
+// holds the newest; it reports whether the held value changed. Those of a tag whose readings
+// scatter tell how far, from one that is not older than its maximum age to the next; so every
 // reading counts that is held at a grid point, and no other, and of those no bad one. Of a
 // tag whose readings are amounts, the sum is held, in the order of their stamps, and is no
 // better than the worst of them.
-func (t *tagState) reach(g int64, tag *Tag) bool {
+func (e *Engine) hold(tag int, g int64) bool {
+	t, cfg := &e.tags[tag], &e.cfg.Tags[tag]
 	n := 0
 	for n < len(t.Pending) && t.Pending[n].At <= g {
 		n++
@@ -116,10 +119,13 @@ func (t *tagState) reach(g int64, tag *Tag) bool {
 	if n == 0 {
 		return false
 	}
-	scatters, adds := tag.scatters(), tag.adds()
+	scatters, adds := cfg.scatters(), cfg.adds()
 	for k, s := range t.Pending[:n] {
+		if cfg.Screen != nil && e.aside(tag, &s) {
+			continue
+		}
 		if scatters {
-			t.Scatter.observe(t.Held, s, tag.MaxAge)
+			t.Scatter.observe(t.Held, s, cfg.MaxAge)
 		}
 		if adds && k > 0 {
 			s.Value += t.Held.Value
@@ -128,5 +134,26 @@ func (t *tagState) reach(g int64, tag *Tag) bool {
 		t.Held = held{At: s.At, Value: s.Value, Has: true, Mark: s.Mark}
 	}
 	t.Pending = slices.Delete(t.Pending, 0, n)
+	return true
+}
+
+// aside tests a reading, which gets the mark of what is found. Where it is to be set aside,
+// the value before it is held on in its place, and is uncertain for it. Bad readings are not
+// tested.
+func (e *Engine) aside(tag int, s *sample) bool {
+	if s.bad() {
+		return false
+	}
+	t := &e.tags[tag]
+	found, aside := e.cfg.Tags[tag].Screen.Judge(t.Screen, s.At, s.Value)
+	if worst := quality.Worse(s.Mark, found); worst != s.Mark {
+		s.Mark = worst
+		e.doubt(tag, found)
+	}
+	if !aside || !t.Held.Has || t.Held.bad() {
+		return false
+	}
+	t.Held.At, t.Held.Aside = s.At, true
+	t.Held.Mark = quality.Worse(t.Held.Mark, found)
 	return true
 }

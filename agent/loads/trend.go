@@ -181,13 +181,14 @@ func (e *Engine) enlistTrends(load int) {
 	}
 }
 
-// follow adds the reading that the tag holds to the trends that it goes into, but for a bad
-// one. After that what a tag that reports by exception has told stands no more.
+// follow adds the reading that the tag holds to the trends that it goes into, but for one
+// that was set aside and for a bad one. After that what a tag that reports by exception has told stands no more.
 func (e *Engine) follow(tag int) {
 	t := &e.tags[tag]
 	for _, f := range e.follows[tag] {
 		c := &e.loads[f.load].Trends[f.trend]
 		switch {
+		case t.Held.Aside:
 		case !t.Held.bad():
 			c.add(sample{t.Held.At, t.Held.Value, t.Held.Mark}, t.Lapse)
 		case e.cfg.Tags[tag].OnChange:
