@@ -5,9 +5,11 @@
 // alive, decodes what comes in and holds it, bounded, until the caller takes it.
 //
 // A payload is a bare number ("12.4") or JSON, where each tag finds its value
-// and its time stamp by a JSON Pointer (RFC 6901); one message may feed many
-// tags. What cannot be trusted is refused, with one [Reason] of a closed set,
-// and never repaired: no value is clamped, defaulted or guessed.
+// and its time stamp by a JSON Pointer (RFC 6901), and may find the quality and the
+// unit that the message tells; one message may feed many tags, and carry many samples
+// of each. What cannot be trusted is refused, with one [Reason] of a closed set,
+// and never repaired: no value is clamped, defaulted or guessed. What its source calls
+// bad, or null, is a reading that has no value.
 //
 // A message is acknowledged to the broker only after the caller has said, with
 // [Session.Ack], that all its readings are on disk. Until then the broker keeps

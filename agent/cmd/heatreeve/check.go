@@ -96,7 +96,26 @@ func notes(s *site.Site) []string {
 	if env := s.Broker.PasswordEnv; env != "" && os.Getenv(env) == "" {
 		all = append(all, fmt.Sprintf("broker.password_env: %s is not set here; the agent needs it where it runs", env))
 	}
-	return append(append(all, idleTags(s)...), unstamped(s)...)
+	all = append(append(all, idleTags(s)...), unstamped(s)...)
+	return append(all, outlasting(s)...)
+}
+
+// usualLists is how long the list of samples in a message is taken to be, at least.
+const usualLists = 10 * time.Second
+
+// outlasting are the tags whose samples wait longer at their source than event time does
+// for them.
+func outlasting(s *site.Site) []string {
+	if s.Timing.Lateness >= usualLists {
+		return nil
+	}
+	var all []string
+	for _, t := range s.Tags {
+		if t.Samples != nil {
+			all = append(all, fmt.Sprintf("tags.%s: comes in lists of samples, and timing.lateness is %v; what a list has of the time before that, where other tags are heard meanwhile, is late. Let it be longer than the time that a list spans", t.Name, s.Timing.Lateness))
+		}
+	}
+	return all
 }
 
 // unstamped are the tags that report on change whose time nobody knows once a message has

@@ -76,3 +76,22 @@ loads:
 		t.Errorf("%d notes, want 4:\n%s", n, out)
 	}
 }
+
+// A list of samples begins before the message comes; check says so where event time does
+// not wait for that, and nothing of the example, where it does.
+func TestCheckNotesShortLateness(t *testing.T) {
+	text, err := os.ReadFile("../../../configs/marrowick-board-mill.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for lateness, notes := range map[string]int{"90 s": 0, "10 s": 0, "5 s": 3} {
+		path := filepath.Join(t.TempDir(), "plant.yaml")
+		if err := os.WriteFile(path, []byte(strings.Replace(string(text), "lateness: 90 s", "lateness: "+lateness, 1)), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		status, out, errs := invoke("check", path)
+		if n := strings.Count(out, "comes in lists of samples"); status != exitGood || errs != "" || n != notes || strings.Count(out, "note:") != notes {
+			t.Errorf("lateness of %s: status %d, %s; %d notes, want %d:\n%s", lateness, status, errs, n, notes, out)
+		}
+	}
+}
