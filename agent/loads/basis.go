@@ -64,6 +64,7 @@ type Count struct {
 type StreamBasis struct {
 	State
 	Result
+	MolarMass      float64 // of what flows, kg/mol
 	Pair           float64 // correlation of the thermometers' errors
 	InletRate      Rate    // where what is stored is corrected for
 	OutletRate     Rate
@@ -158,6 +159,9 @@ func (e *Engine) streamBasis(b *Basis, load int) {
 		b.Inputs[0].Coarse, b.Inputs[0].Scatter = 0, 0
 	}
 	b.Stream = q.basis(&s, rate, e.cfg.Tags)
+	if m, err := q.medium(&s.x); err == nil {
+		b.Stream.MolarMass = m.MolarMass()
+	}
 	for p := PartCp; p < Parts; p++ {
 		b.Stream.PropertyShares[p] = b.Figure.Share[p]
 	}

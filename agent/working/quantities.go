@@ -44,7 +44,11 @@ var quantities = map[string]quantity{
 func (p *page) quantity(in *loads.Input) quantity {
 	switch in.Name {
 	case "flow":
-		return flowSymbols[p.load.Stream.FlowKind]
+		q := flowSymbols[p.load.Stream.FlowKind]
+		if q.symbol == "m" && p.load.Stream.CalibratedAt > 0 {
+			q.symbol, q.words = "ms", "mass flow that the meter shows"
+		}
+		return q
 	case "humidity":
 		return humidities[p.load.Stream.HumidityKind]
 	case "content":

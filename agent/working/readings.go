@@ -25,10 +25,18 @@ func (p *page) reading(in *loads.Input) {
 	tag, q := &p.Site.Tags[in.Source.Tag], p.quantity(in)
 	x := payload(tag, in.Held.Value)
 	text := strconv.FormatFloat(x, 'f', -1, 64)
-	p.add(Line{Symbol: q.symbol + "'", Words: in.Name, Value: x, Shown: text, Unit: tag.Unit.Symbol, Reading: p.sample(in.Held, in.Fault)})
+	p.add(Line{Symbol: q.symbol + "'", Words: p.read(in.Name, tag), Value: x, Shown: text, Unit: tag.Unit.Symbol, Reading: p.sample(in.Held, in.Fault)})
 	if in.Alive.At != 0 {
 		p.add(Line{Words: "sign of life of its source", Reading: p.sample(in.Alive, loads.NoFault)})
 	}
+}
+
+// read names an input, and the raw signal that its tag's numbers were made of.
+func (p *page) read(name string, tag *site.Tag) string {
+	if tag.Signal == nil {
+		return name
+	}
+	return name + ", by " + tag.Signal.Word
 }
 
 func (p *page) sample(r loads.Reading, why loads.Fault) *Sample {

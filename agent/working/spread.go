@@ -41,7 +41,11 @@ func (p *page) streamSpread() {
 		s.lasting = append(s.lasting, p.share("s12", "what the matched pair has in common", sum(s.pair).times(r.root()), f.Share[loads.PartPair]))
 	}
 	p.ofProperty(&s, loads.PartCp, "cp", "specific heat", p.at["stream"], b.ByFlow)
-	p.ofProperty(&s, loads.PartDensity, "ρ", "density", p.at["stream"], b.ByFlow)
+	if p.load.Stream.CalibratedAt > 0 { // the flow goes with its root
+		p.ofProperty(&s, loads.PartDensity, "ρ", "density", p.at["stream"].times(number(0.5)), b.ByFlow/2)
+	} else {
+		p.ofProperty(&s, loads.PartDensity, "ρ", "density", p.at["stream"], b.ByFlow)
+	}
 	p.ofProperty(&s, loads.PartStrength, "w", "specific heat and density by the strength of the mixture", p.at["stream"], b.ByFlow)
 	if stored, ok := p.at["stored"]; ok {
 		share := stored.times(number(0.1)).over(number(3).root())

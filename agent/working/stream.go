@@ -80,20 +80,39 @@ func (p *page) enthalpies() (h1, h2 term) {
 func (p *page) massFlow() term {
 	b, s := p.Basis.Stream, p.load.Stream
 	flow, m := p.at["flow"], b.MassFlow
-	switch s.FlowKind {
-	case unit.VolumeFlow:
+	var rho term
+	if s.FlowKind == unit.VolumeFlow || s.CalibratedAt > 0 {
 		end := "inlet"
 		if s.MeterAtOutlet {
 			end = "outlet"
 		}
-		rho := p.given("ρ", "density at the meter, which sits at the "+end, b.Density, "kg/m3", place(b.Density, fine), p.citation)
-		return p.worked("m", "mass flow", flow.times(rho), m, "kg/s", place(m, fine), "")
-	case unit.MolarFlow:
-		molar := m / b.Flow
-		M := p.given("M", "molar mass", molar, "kg/mol", place(molar, fine+1), p.citation)
-		return p.worked("m", "mass flow", flow.times(M), m, "kg/s", place(m, fine), "")
+		rho = p.given("ρ", "density at the meter, which sits at the "+end, b.Density, "kg/m3", place(b.Density, fine), p.citation)
 	}
-	return flow
+	f := flow
+	switch s.FlowKind {
+	case unit.VolumeFlow:
+		f = f.times(rho)
+	case unit.MolarFlow:
+		molar := p.Basis.Stream.MolarMass
+		f = f.times(p.given("M", "molar mass", molar, "kg/mol", place(molar, fine+1), p.citation))
+	}
+	if s.CalibratedAt > 0 {
+		f = f.times(p.felt(rho))
+	}
+	if f == flow {
+		return flow
+	}
+	return p.worked("m", "mass flow", f, m, "kg/s", place(m, fine), "")
+}
+
+// felt is by how much more or less flows than a meter by differential pressure shows.
+func (p *page) felt(rho term) term {
+	at := p.load.Stream.CalibratedAt
+	design := p.given("ρ0", "density that the meter is calibrated at", at, "kg/m3", place(at, fine), "site file; ISO 5167-1:2003, 5.1")
+	if p.load.Stream.FlowKind == unit.VolumeFlow {
+		return design.over(rho).root()
+	}
+	return rho.over(design).root()
 }
 
 // corrected writes what the corrections do to the duty by flow and temperatures.

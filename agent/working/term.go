@@ -54,9 +54,6 @@ func (t term) squared() term {
 	return term{law + "²", text + "²", t.value * t.value, asOne}
 }
 
-// negated is 0 less the term where it is no plain number.
-func (t term) negated() term { return number(0).minus(t) }
-
 // sum adds up; it must have one term at least.
 func sum(terms []term) term {
 	s := terms[0]
