@@ -51,6 +51,9 @@ func prefixed(b []byte) (text, rest []byte, ok bool) {
 // The library gives the last answer to that. MQTT 3.1.1, sections 3.4 and 3.5.
 type answer [4]byte
 
+// id is the packet identifier.
+func (a answer) id() uint16 { return binary.BigEndian.Uint16(a[2:]) }
+
 func (d *delivery) answer() answer {
 	kind := byte(4)
 	if d.qos == 2 {

@@ -39,19 +39,20 @@ type inbox struct {
 
 	mu       sync.Mutex
 	readings []Received
-	unacked  []*message    // of this connection, by arrival
-	crowded  bool          // waiting was in vain; the next take clears it
-	left     bool          // a message stayed with the broker; a new connection clears it
-	room     chan struct{} // one slot: readings were taken
-	mark     int           // unacknowledged messages at which reached is told; 0: never
-	reached  chan struct{} // one slot: so many wait
+	unacked  []*message          // of this connection, by arrival
+	byID     map[uint16]*message // the same; so there are never more than MQTT has identifiers
+	crowded  bool                // waiting was in vain; the next take clears it
+	left     bool                // a message stayed with the broker; a new connection clears it
+	room     chan struct{}       // one slot: readings were taken
+	mark     int                 // unacknowledged messages at which reached is told; 0: never
+	reached  chan struct{}       // one slot: so many wait
 
 	sending sync.Mutex // one at a time acknowledges, for the order
 	answers []byte     // being sent
 }
 
 func newInbox(limit int, patience time.Duration) *inbox {
-	return &inbox{limit: limit, patience: patience, room: make(chan struct{}, 1), reached: make(chan struct{}, 1)}
+	return &inbox{limit: limit, patience: patience, byID: make(map[uint16]*message), room: make(chan struct{}, 1), reached: make(chan struct{}, 1)}
 }
 
 // reconnect begins a new connection. What was not acknowledged is delivered
@@ -60,6 +61,7 @@ func (b *inbox) reconnect() {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	b.unacked = nil
+	b.byID = make(map[uint16]*message)
 	b.left = false
 }
 
@@ -98,9 +100,7 @@ func (b *inbox) offer(m *message, outcomes []Outcome) (ok, wait bool) {
 		return false, !b.left && !b.crowded
 	}
 	if m != nil {
-		m.open = n
-		b.unacked = append(b.unacked, m)
-		b.tell()
+		m = b.await(m, n)
 	}
 	for i := range outcomes {
 		if outcomes[i].Refusal == nil {
@@ -108,6 +108,22 @@ func (b *inbox) offer(m *message, outcomes []Outcome) (ok, wait bool) {
 		}
 	}
 	return true, false
+}
+
+// await keeps m until n readings are stored. If the broker sends again what it has no
+// acknowledgement for yet, the first copy stands for both and is acknowledged once: a
+// second acknowledgement might meet the next message with that identifier, which is not
+// stored. mu is held.
+func (b *inbox) await(m *message, n int) *message {
+	if before := b.byID[m.answer.id()]; before != nil {
+		before.open += n
+		return before
+	}
+	m.open = n
+	b.byID[m.answer.id()] = m
+	b.unacked = append(b.unacked, m)
+	b.tell()
+	return m
 }
 
 // tell passes on that as many messages wait as were asked for. mu is held.
@@ -198,6 +214,7 @@ func (b *inbox) due() acknowledger {
 	n := 0
 	for n < min(len(b.unacked), together) && b.unacked[n].open == 0 && b.unacked[n].by == b.unacked[0].by {
 		b.answers = append(b.answers, b.unacked[n].answer[:]...)
+		delete(b.byID, b.unacked[n].answer.id())
 		n++
 	}
 	if n == 0 {

@@ -61,6 +61,44 @@ func TestAcknowledgedOnceInOrder(t *testing.T) {
 	}
 }
 
+// A broker that sends again on the same connection: one acknowledgement for both copies,
+// when all is stored, in the place of the first; then the identifier is free again.
+func TestRepeatedIdentifierIsAcknowledgedOnce(t *testing.T) {
+	b, got := newInbox(100, time.Second), &acks{}
+	put(t, b, numbered(got, 1), 1)
+	put(t, b, numbered(got, 2), 1)
+	put(t, b, numbered(got, 1), 1)
+	batch, _ := b.take(nil)
+	b.stored(batch[:2])
+	if len(got.sent) != 0 {
+		t.Fatalf("sent %v while a copy of message 1 was not stored", got.sent)
+	}
+	b.stored(batch[2:])
+	put(t, b, numbered(got, 1), 0) // another message
+	b.acknowledge()
+	if !slices.Equal(got.sent, []int{1, 2, 1}) || b.waiting() != 0 {
+		t.Errorf("sent %v, %d waiting; want 1 once for both copies, 2, and 1 for the next message", got.sent, b.waiting())
+	}
+}
+
+// Whatever a broker sends without waiting for acknowledgements, no more is kept than
+// there are identifiers.
+func TestUnacknowledgedAreBounded(t *testing.T) {
+	b, got := newInbox(100, time.Second), &acks{}
+	put(t, b, numbered(got, 0), 1) // not stored
+	for i := range 3 << 16 {
+		put(t, b, numbered(got, i), 0)
+	}
+	if b.waiting() != 1<<16 || len(b.byID) != 1<<16 || len(got.sent) != 0 {
+		t.Errorf("%d and %d waiting, %d sent; want 65536 and none", b.waiting(), len(b.byID), len(got.sent))
+	}
+	batch, _ := b.take(nil)
+	b.stored(batch)
+	if b.waiting() != 0 || len(b.byID) != 0 || len(got.sent) != 1<<16 {
+		t.Errorf("%d and %d waiting, %d sent; want none, 65536", b.waiting(), len(b.byID), len(got.sent))
+	}
+}
+
 func TestReconnectionDropsAcknowledgements(t *testing.T) {
 	b, got := newInbox(100, time.Second), &acks{}
 	put(t, b, numbered(got, 1), 1)

@@ -20,6 +20,7 @@ func BenchmarkReceive(b *testing.B) {
 	n := 0
 	b.ReportAllocs()
 	for b.Loop() {
+		m.id++
 		s.receive(b.Context(), nobody{}, m)
 		if n++; n%1000 == 0 {
 			batch = s.Take(batch[:0])
