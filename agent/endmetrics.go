@@ -2,11 +2,18 @@ package agent
 
 import (
 	"math"
+	"slices"
 
 	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
 	"heatreeve/ingest"
 	"heatreeve/ingest/quality"
 )
+
+// hasMetrics tells whether a tag reads a Sparkplug metric.
+func hasMetrics(s *site.Site) bool {
+	return slices.ContainsFunc(s.Tags, func(t site.Tag) bool { return t.Metric != nil })
+}
 
 // endMetrics ends, at the start, what Sparkplug metrics held at the stop or the kill: no
 // broker keeps their messages, so what has become of them meanwhile is not known, and one

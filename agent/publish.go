@@ -27,6 +27,13 @@ func (a *Agent) publish(r *rhythm) {
 		},
 		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Damaged: l.store.Damaged(), Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
+	if hasMetrics(a.site) {
+		c := &stats.Sparkplug
+		v.Sparkplug = &view.Sparkplug{
+			Births: c.Births, Deaths: c.Deaths, LateDeaths: c.LateDeaths, Unborn: c.Unborn, Malformed: c.Malformed, Retained: c.Retained,
+			Crowded: c.Crowded, Gaps: c.Gaps, Missed: c.Missed, Reordered: c.Reordered, UnknownAlias: c.UnknownAlias, Requests: c.Requests,
+		}
+	}
 	if a.clock != nil {
 		v.ClockSteps, _ = a.clock.state()
 	}

@@ -52,6 +52,12 @@ var (
 	topics    = desc("broker_subscribed_topics", "Topics that the broker has granted on this connection.")
 	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
 	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
+	plugged   = desc("sparkplug_messages_total", "Messages of Sparkplug B since the agent started that are no data of a source that is born, by kind.", "kind")
+	gaps      = desc("sparkplug_gaps_total", "Gaps in the sequences of Sparkplug nodes.")
+	missed    = desc("sparkplug_missed_messages_total", "Messages missing in the sequences of Sparkplug nodes; some may have come later.")
+	reordered = desc("sparkplug_reordered_messages_total", "Sparkplug messages that were missing and came later.")
+	noAlias   = desc("sparkplug_unknown_alias_total", "Sparkplug metrics whose alias no birth has told.")
+	requests  = desc("sparkplug_rebirth_requests_total", "Births that Sparkplug nodes were asked for.")
 	steps     = desc("clock_steps_total", "How often this machine's clock was set since the agent started, by half a second or more.")
 	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
 	bytes     = desc("history_bytes", "Bytes in use within the history's file; retention bounds them.")
@@ -211,6 +217,9 @@ func (o *sink) agent(s *view.Snapshot) {
 	o.gauge(topics, float64(s.Broker.Topics))
 	o.counter(losses, float64(s.Broker.Losses))
 	o.counter(unknown, float64(s.Broker.UnknownTopic))
+	if s.Sparkplug != nil {
+		o.sparkplug(s.Sparkplug)
+	}
 	o.gauge(waiting, float64(s.Broker.Waiting))
 	o.counter(steps, float64(s.ClockSteps))
 	o.gauge(bytes, float64(s.History.Bytes))

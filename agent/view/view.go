@@ -23,6 +23,7 @@ type Snapshot struct {
 	// ClockSteps counts how often this machine's clock was set while the agent ran.
 	ClockSteps uint64
 	Broker     Broker
+	Sparkplug  *Sparkplug // nil where no tag reads a metric
 	History    History
 }
 
@@ -66,6 +67,20 @@ type Broker struct {
 	UnknownTopic uint64 // messages on topics that no tag asks for
 	Fault        string // why there is no connection; empty when there is
 	Waiting      int    // messages not yet acknowledged
+}
+
+// Sparkplug counts what came by Sparkplug B since the agent started.
+type Sparkplug struct {
+	Births, Deaths uint64 // of nodes and devices
+	LateDeaths     uint64 // of sessions that were over
+	Unborn         uint64 // messages before a birth that holds
+	Malformed      uint64 // messages that are no Sparkplug B
+	Retained       uint64 // messages that the broker had kept, against the standard
+	Crowded        uint64 // messages and metrics beyond the bounds
+	Gaps, Missed   uint64 // in the sequences of nodes, and the messages missing in them
+	Reordered      uint64 // messages of these that came later
+	UnknownAlias   uint64 // metrics whose alias no birth has told
+	Requests       uint64 // births asked for
 }
 
 // History is the store.

@@ -121,7 +121,7 @@ type printed struct {
 }
 
 // lines takes the text of a working apart.
-func lines(text string) (all []printed) {
+func linesOf(text string) (all []printed) {
 	var whole []string
 	for line := range strings.Lines(text) {
 		line = strings.TrimRight(line, "\n")
@@ -163,7 +163,7 @@ func explain(t *testing.T, args ...string) string {
 func followed(t *testing.T, text string) (formulas int) {
 	t.Helper()
 	values := map[string]string{}
-	for _, l := range lines(text) {
+	for _, l := range linesOf(text) {
 		if strings.HasPrefix(l.words, "cannot be read") {
 			t.Error(l.words)
 			continue

@@ -116,7 +116,16 @@ func (b *lockedBuffer) String() string {
 
 func start(t *testing.T, path string, args ...string) *process {
 	t.Helper()
+	return startReading(t, nil, path, args...)
+}
+
+// startReading starts a program that reads from in; nil: from nothing.
+func startReading(t *testing.T, in *os.File, path string, args ...string) *process {
+	t.Helper()
 	p := &process{cmd: exec.Command(path, args...), done: make(chan struct{})}
+	if in != nil {
+		p.cmd.Stdin = in
+	}
 	p.cmd.Stdout, p.cmd.Stderr = &p.out, &p.out
 	if err := p.cmd.Start(); err != nil {
 		t.Fatal(err)
