@@ -51,6 +51,7 @@ type ledger struct {
 	failures    uint64
 	fault       string
 	diary       diary
+	attested    *attested
 }
 
 // openLedger takes up the accounts where the history left them; now is by the system's
@@ -79,6 +80,9 @@ func openLedger(s *site.Site, db *store.Store, o Options, now time.Time) (*ledge
 		return nil, fmt.Errorf("resume the accounts: %w", err)
 	}
 	l.committed, l.aged = l.registers(), l.accounts.engine.Through()
+	if l.attested, err = newAttested(a.cfg.Loads, s.Zone, db, l.loadIDs, l.aged); err != nil {
+		return nil, fmt.Errorf("take up the witnesses: %w", err)
+	}
 	l.batch.Site = &store.SiteFile{From: l.accounts.engine.Through(), Text: s.Text}
 	l.happened(eventStarted, fmt.Sprintf("heatreeve %s, site file %s", o.Version, shortDigest(s.Digest)))
 	if err := l.first(now); err != nil {
@@ -274,6 +278,7 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 	}
 	for _, m := range l.accounts.advance(beat) {
 		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))
+		l.attested.add(m.Load, m.Start, m.Witness, m.Compared)
 	}
 	l.batch.Beats = append(l.batch.Beats, kept)
 	l.waiting += len(received)

@@ -75,6 +75,7 @@ func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
 	return view.Load{
 		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
 		Design: d.Duty, Allow: d.Allow,
+		Witness: l.attested.at(i, l.accounts.engine.Through()),
 		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
 	}
 }

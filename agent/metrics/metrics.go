@@ -35,6 +35,9 @@ var (
 	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
 	outlet      = desc("load_outlet_celsius", "Outlet temperature that the duty was computed from.", "load")
 	content     = desc("load_content_celsius", "Temperature of a vessel's content that the duty was computed from.", "load")
+	counted     = desc("load_witness_counted_joules", "Heat that the load's witness has counted since midnight by the clock of the site, in spans between two of its counts that were measured throughout.", "load")
+	served      = desc("load_witness_served_joules", "Heat that the load has served in the same spans as its witness has counted since midnight, positive in the load's own service.", "load")
+	deviation   = desc("load_witness_deviation_ratio", "How far the load is above its witness since midnight, as a fraction of what that has counted; absent until it has counted anything.", "load")
 	expected    = desc("load_expected_duty_watts", "Duty that the design expects now.", "load")
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
 
@@ -155,11 +158,22 @@ func (o *sink) load(l *view.Load, now design.Verdict) {
 	o.counter(spent, float64(l.Booked.Measured)/1e9, l.Name, "measured")
 	o.counter(spent, float64(l.Booked.Bridged)/1e9, l.Name, "bridged")
 	o.counter(spent, float64(l.Booked.Missing)/1e9, l.Name, "missing")
+	if w := l.Witness; w != nil {
+		o.witness(l.Name, w)
+	}
 	if l.Design != 0 {
 		o.gauge(expected, l.Design, l.Name)
 	}
 	for _, v := range design.Verdicts {
 		o.gauge(verdict, truth(v == now), l.Name, v.String())
+	}
+}
+
+func (o *sink) witness(name string, w *view.Witness) {
+	o.gauge(counted, w.Counted, name)
+	o.gauge(served, w.Served, name)
+	if w.Told {
+		o.gauge(deviation, w.Deviation, name)
 	}
 }
 

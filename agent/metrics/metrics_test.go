@@ -21,12 +21,13 @@ func snapshot() *view.Snapshot {
 		Loads: []view.Load{
 			{
 				Name: "hot-water", Verdict: design.Short, Design: 640e3, Allow: 0.08,
-				Figure: loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, Random: 2e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
-				Until:  instant + 30e9,
-				Means:  [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
-				Booked: loads.Totals{Given: 1.5e9, Taken: 2, BridgedGiven: 3e6, BridgedTaken: 5, Measured: 3600e9, Bridged: 90e9, Missing: 60e9},
+				Figure:  loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, Random: 2e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
+				Until:   instant + 30e9,
+				Means:   [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
+				Booked:  loads.Totals{Given: 1.5e9, Taken: 2, BridgedGiven: 3e6, BridgedTaken: 5, Measured: 3600e9, Bridged: 90e9, Missing: 60e9},
+				Witness: &view.Witness{Counted: 2e9, Served: 1.5e9, Deviation: -0.25, Told: true},
 			},
-			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}},
+			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}, Witness: &view.Witness{}},
 			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true}, Until: instant + 30e9},
 		},
 		Tags: []view.Tag{
@@ -66,6 +67,17 @@ heatreeve_load_coverage_ratio{load="hot-water",window="1m"} 1
 heatreeve_load_coverage_ratio{load="spare",window="15m"} 0
 heatreeve_load_coverage_ratio{load="spare",window="1h"} 0
 heatreeve_load_coverage_ratio{load="spare",window="1m"} 0
+# HELP heatreeve_load_witness_counted_joules Heat that the load's witness has counted since midnight by the clock of the site, in spans between two of its counts that were measured throughout.
+# TYPE heatreeve_load_witness_counted_joules gauge
+heatreeve_load_witness_counted_joules{load="dryer"} 0
+heatreeve_load_witness_counted_joules{load="hot-water"} 2e+09
+# HELP heatreeve_load_witness_deviation_ratio How far the load is above its witness since midnight, as a fraction of what that has counted; absent until it has counted anything.
+# TYPE heatreeve_load_witness_deviation_ratio gauge
+heatreeve_load_witness_deviation_ratio{load="hot-water"} -0.25
+# HELP heatreeve_load_witness_served_joules Heat that the load has served in the same spans as its witness has counted since midnight, positive in the load's own service.
+# TYPE heatreeve_load_witness_served_joules gauge
+heatreeve_load_witness_served_joules{load="dryer"} 0
+heatreeve_load_witness_served_joules{load="hot-water"} 1.5e+09
 # HELP heatreeve_load_expected_duty_watts Duty that the design expects now.
 # TYPE heatreeve_load_expected_duty_watts gauge
 heatreeve_load_expected_duty_watts{load="hot-water"} 640000
@@ -86,6 +98,7 @@ heatreeve_refused_total{reason="empty"} 7
 `
 	err := testutil.GatherAndCompare(registry(snapshot(), instant+5e9), strings.NewReader(want),
 		"heatreeve_load_duty_watts", "heatreeve_load_inlet_celsius", "heatreeve_load_coverage_ratio",
+		"heatreeve_load_witness_counted_joules", "heatreeve_load_witness_served_joules", "heatreeve_load_witness_deviation_ratio",
 		"heatreeve_load_expected_duty_watts", "heatreeve_tag_reading_timestamp_seconds", "heatreeve_tag_max_age_seconds", "heatreeve_tag_refused_total", "heatreeve_refused_total")
 	if err != nil {
 		t.Error(err)

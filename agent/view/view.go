@@ -37,6 +37,15 @@ type Load struct {
 	Design  float64      // expected duty, W; 0 where the load has none
 	Allow   float64      // allowance, fraction of Design
 	Verdict design.Verdict
+	Witness *Witness // nil of a load without one
+}
+
+// Witness is what another meter has counted since midnight by the clock of the site, and what
+// the load served in the same spans, J.
+type Witness struct {
+	Counted, Served float64
+	Deviation       float64 // of the load from its witness, as a fraction of it
+	Told            bool    // the witness has counted anything, so that there is a deviation
 }
 
 // Tag is one tag, with what became of its messages since the agent started.
