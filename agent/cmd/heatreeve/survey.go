@@ -16,11 +16,11 @@ import (
 )
 
 // surveyHelp tells what a survey does and what not.
-const surveyHelp = `It subscribes to the topics, as one more client that publishes nothing and leaves
-nothing behind, and tells for each number that comes by: where it stands in the
-payload, how often it comes, its values, what it probably measures, and how its
-stamps lie against this machine's clock. What is guessed has a question mark; the
-draft says why. A broker's access rules may hide topics.
+const surveyHelp = `It subscribes to the topics, as one more client that publishes nothing and
+leaves nothing behind, and tells for each number that comes by: where it stands
+in the payload, how often it comes, its values, what it probably measures, and
+how its stamps lie against this machine's clock. What is guessed has a question
+mark; the draft says why. A broker's access rules may hide topics.
 
 A draft is a site file with the tags and the loads that names suggest. What only
 you can know is ___ in it, and heatreeve check FILE tells what is left of that.
