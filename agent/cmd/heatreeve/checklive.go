@@ -18,10 +18,10 @@ const checkHelp = `With --live it listens to the broker of the site for a while 
 more client that publishes nothing and leaves nothing behind, and tells tag by
 tag what is heard, how often, the last value in the tag's unit and in SI, and
 how its stamps lie against this machine's clock; and load by load a first duty
-with its working, and what looks like a mistake: inlet and outlet swapped, a flow
-in another unit, a gauge pressure taken for absolute, a meter in the other pipe,
-a flow that does not read zero. A fault ends it with status 1; a note may be as
-it should be.
+with its working, and what looks like a mistake: inlet and outlet swapped, a
+flow in another unit, a gauge pressure taken for absolute, a meter in the other
+pipe, a flow that does not read zero. A fault ends it with status 1; a note may
+be as it should be.
 `
 
 // checkLive holds the site against its broker and tells what was found.
