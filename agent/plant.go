@@ -7,6 +7,7 @@ import (
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/ingest"
+	"heatreeve/ingest/screen"
 	"heatreeve/ingest/sparkplug"
 	"heatreeve/thermo/unit"
 )
@@ -28,12 +29,25 @@ func tagOf(t *site.Tag) loads.Tag {
 	tag := loads.Tag{
 		Name: t.Name, MaxAge: int64(t.MaxAge), Accuracy: loads.Accuracy(t.Accuracy),
 		Resolution: t.Resolution, Deadband: t.Deadband, OnChange: t.OnChange, Alive: t.Alive,
+		Beside: t.Beside, HasBeside: t.HasBeside, Screen: screenOf(t),
 		Meaning: meaning(t),
 	}
 	if c := t.Counter; c != nil {
 		tag.Counter = &loads.Counter{Modulus: c.Modulus, Largest: c.Largest, Each: c.Each}
 	}
 	return tag
+}
+
+// screenOf is what the readings of a tag are tested against, nil for nothing.
+func screenOf(t *site.Tag) *screen.Limits {
+	s := t.Screen
+	if s == nil {
+		return nil
+	}
+	return &screen.Limits{
+		Low: s.Low, High: s.High, HasRange: s.Low < s.High, Fastest: s.Fastest, StuckAfter: int64(s.Stuck), Spikes: s.Spikes,
+		Resolution: t.Resolution, Gap: int64(t.Holds()),
+	}
 }
 
 // meaning tells what the tag's numbers are of: in which unit, and whether they count. Gauge
@@ -53,7 +67,7 @@ func meaning(t *site.Tag) string {
 }
 
 func loadOf(l *site.HeatLoad) loads.Load {
-	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness}
+	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness, Running: loads.Source(l.Running), HasRunning: l.HasRunning}
 	if l.Vessel != nil {
 		load.Vessel = vesselOf(l.Vessel)
 	} else {
@@ -79,7 +93,7 @@ func streamOf(s *site.Stream) loads.Stream {
 		Pressure: loads.Source(s.Pressure), OutletPressure: loads.Source(s.OutletPressure),
 		Humidity: loads.Source(s.Humidity), HumidityKind: s.HumidityKind,
 		Coil: loads.Source(s.Coil), HasCoil: s.HasCoil,
-		MeterAtOutlet: s.MeterAtOutlet, CalibratedAt: s.CalibratedAt, Gives: s.Gives, Margin: s.Margin, IdleBelow: s.IdleBelow, Pair: s.Pair,
+		MeterAtOutlet: s.MeterAtOutlet, CalibratedAt: s.CalibratedAt, Gives: s.Gives, BothWays: s.BothWays, Margin: s.Margin, IdleBelow: s.IdleBelow, Pair: s.Pair,
 		Corrections: loads.Corrections{
 			Pump: loads.Source(s.Pump), HasPump: s.HasPump, Hold: s.Hold, Stored: s.Stored, StoredOver: int64(s.StoredOver),
 		},

@@ -10,6 +10,7 @@ import (
 	"heatreeve/agent/site"
 	"heatreeve/configs"
 	"heatreeve/ingest"
+	"heatreeve/ingest/screen"
 )
 
 // What the file tells beyond flows and temperatures reaches the engine.
@@ -136,6 +137,38 @@ func TestMoistAirFromTheSite(t *testing.T) {
 		}
 		if f.Share[loads.PartHumidity] == 0 {
 			t.Error("the humidity has no part in the uncertainty")
+		}
+	}
+}
+
+// What a tag is tested against, and what stands beside it, reaches the engine.
+func TestPlantOfTests(t *testing.T) {
+	text, err := configs.Files.ReadFile("tarnholt-heat-works.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := site.Parse("tarnholt", text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	cfg := plantOf(s)
+	supply := cfg.Tags[0]
+	want := screen.Limits{Low: 323.15, High: 388.15, HasRange: true, Fastest: 1.5, StuckAfter: 30 * minute, Spikes: true, Resolution: 0.05, Gap: minute}
+	if supply.Screen == nil || *supply.Screen != want {
+		t.Errorf("screen %+v, want %+v", supply.Screen, want)
+	}
+	if !supply.HasBeside || cfg.Tags[supply.Beside].Name != "network/supply temperature B" {
+		t.Errorf("beside %q stands tag %d", supply.Name, supply.Beside)
+	}
+	if l := cfg.Loads[0]; !l.HasRunning || cfg.Tags[l.Running.Tag].Name != "network/pump" || l.Stream.BothWays {
+		t.Errorf("load %+v", l)
+	}
+	if l := cfg.Loads[3]; !l.Stream.BothWays || l.HasRunning {
+		t.Errorf("load %+v", l)
+	}
+	for i, tag := range cfg.Tags {
+		if i != 0 && tag.Name != "network/return temperature" && tag.Screen != nil {
+			t.Errorf("tag %q is tested, and did not ask for it", tag.Name)
 		}
 	}
 }

@@ -88,7 +88,7 @@ func shape(n *yaml.Node) string {
 // added are keys that one block or another has, and one that none has.
 var added = []string{
 	"colour", "time_unit", "range", "password_env", "key", "takes", "gives", "meter_at", "allow", "uncertainty", "table", "propylene glycol",
-	"counts", "reports", "vessel", "samples", "signal", "quality",
+	"counts", "reports", "vessel", "samples", "signal", "quality", "stuck", "spikes", "running",
 }
 
 func changeKeys(n *yaml.Node, path string, write func(format string, args ...any)) {

@@ -25,7 +25,7 @@ func (r *reader) readLoads(o object) {
 
 func (r *reader) load(e entry) HeatLoad {
 	o := e.object("loads.*")
-	l := HeatLoad{Name: e.name, Witness: nowhere, Design: Design{Lasting: 10 * time.Minute}}
+	l := HeatLoad{Name: e.name, Witness: nowhere, Running: nowhere, Design: Design{Lasting: 10 * time.Minute}}
 	var design object
 	if v, ok := o.get("design"); ok {
 		design = v.object("loads.*.design")
@@ -50,6 +50,7 @@ func (r *reader) load(e entry) HeatLoad {
 	default:
 		o.need("stream", "the fluid with its flow, temperatures and pressure; or vessel, a closed content", "vessel")
 	}
+	r.running(o, &l)
 	return l
 }
 
@@ -72,6 +73,9 @@ func (r *reader) stream(o object, d *Design) *Stream {
 	}
 	s.Gives = o.service("stream", "heat (a heating circuit)", "heat (a chilled circuit, a heated product)")
 	o.calibrated(s)
+	if v, ok := o.get("both_ways"); ok {
+		s.BothWays = v.truth()
+	}
 	o.meter(s)
 	r.moisture(o, s)
 	if v, ok := o.get("margin"); ok {

@@ -13,8 +13,9 @@ import (
 type reader struct {
 	site     *Site
 	file     string
-	tags     map[string]int          // declared names to the index in site.Tags
-	told     []told                  // topics that tell whether sources are alive
+	tags     map[string]int // declared names to the index in site.Tags
+	told     []told         // topics that tell whether sources are alive
+	besides  []beside
 	brokerAt []value                 // where each of the brokers stands in the file
 	fluids   map[string]thermo.Fluid // nil where the declaration is at fault
 	gauge    bool                    // the file has a gauge pressure
@@ -34,6 +35,7 @@ func (r *reader) read(v value) {
 	r.history(o)
 	r.readFluids(o)
 	r.readTags(o)
+	r.readBesides()
 	r.readLoads(o)
 	r.checkTopics()
 	r.publish(o)

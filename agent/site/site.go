@@ -81,6 +81,10 @@ type Tag struct {
 	Alive    int
 	// Metric is set of a tag that reads one of a Sparkplug B namespace in place of a topic.
 	Metric *Metric
+	Screen *Screen // nil: its readings are not tested
+	// Beside is the index of a second sensor of the same quantity, where HasBeside.
+	Beside    int
+	HasBeside bool
 	// Liveness is set of a tag that no load may choose: it stands behind those that the
 	// file declares, under the name of its topic or Sparkplug source, one for each.
 	Liveness *Liveness
@@ -144,6 +148,8 @@ type HeatLoad struct {
 	Vessel     *Vessel // nil of a stream
 	Witness    Source  // the energy counter of a heat meter in the same circuit; only with HasWitness
 	HasWitness bool
+	Running    Source // the tag of the pump; only with HasRunning
+	HasRunning bool
 	Design     Design
 }
 
@@ -155,7 +161,7 @@ func (l *HeatLoad) Fluid() (string, thermo.Fluid) {
 	return l.Stream.FluidName, l.Stream.Fluid
 }
 
-// Sources are all tags and constants that the load reads, its witness too.
+// Sources are all tags and constants that the load reads, its witness and its pump too.
 func (l *HeatLoad) Sources() []Source {
 	var all []Source
 	if v := l.Vessel; v != nil {
@@ -166,6 +172,9 @@ func (l *HeatLoad) Sources() []Source {
 	}
 	if l.HasWitness {
 		all = append(all, l.Witness)
+	}
+	if l.HasRunning {
+		all = append(all, l.Running)
 	}
 	return all
 }
@@ -190,6 +199,7 @@ type Stream struct {
 	MeterAtOutlet            bool           // where a volume flow is metered, or one that is calibrated
 	CalibratedAt             float64        // kg/m³ that a meter by differential pressure was reckoned for; 0 for none
 	Gives                    bool           // gives heat, and is colder at the outlet; else it takes heat
+	BothWays                 bool           // heated at times and cooled at others
 	Margin                   float64        // K to saturation below which heat may be latent; default 5, for moist air 1
 	IdleBelow                float64        // SI, as the flow; default 0.5 % of the flow tag's range
 	// Humidity is that of a gas whose vapour content is measured, at the inlet, in

@@ -106,6 +106,9 @@ func (r *reader) tag(e entry) Tag {
 		o.checkCounter(&t, r.site.Timing.Grid)
 	}
 	r.reports(o, &t)
+	if known {
+		r.screen(o, &t)
+	}
 	return t
 }
 

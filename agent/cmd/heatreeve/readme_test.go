@@ -6,6 +6,7 @@ import (
 	"slices"
 	"strings"
 	"testing"
+	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
 
@@ -111,6 +112,32 @@ func TestReadmeShowsGoodPayloads(t *testing.T) {
 	words, _, _ = strings.Cut(words, "\n### ")
 	for _, key := range append([]string{"quality", "unit_at", "samples", "step", "signal", "lead", "differential", "cut_off"}, site.Keys()["tags.*.quality"]...) {
 		if !strings.Contains(text+words, "`"+key) && !strings.Contains(text+words, key+":") {
+			t.Errorf("the README says nothing of %s", key)
+		}
+	}
+}
+
+// And the tests on signals.
+func TestReadmeShowsGoodTests(t *testing.T) {
+	_, rest, ok := strings.Cut(readme(t), "### Tests on signals, and quality\n\n```yaml\n")
+	text, words, closed := strings.Cut(rest, "```")
+	if !ok || !closed {
+		t.Fatal("the README shows no tests on signals")
+	}
+	s, err := site.Parse("README.md", []byte("site: A\ntimezone: UTC\nbarometer: 100 kPa\nbroker: {url: mqtt://127.0.0.1}\n"+text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	want := site.Screen{Low: 278.15, High: 368.15, Fastest: 2, Stuck: 30 * time.Minute, Spikes: true}
+	if tag := s.Tags[0]; *tag.Screen != want || !tag.HasBeside || s.Tags[tag.Beside].Name != "TT-1B" {
+		t.Errorf("the README shows %+v beside %d", *tag.Screen, tag.Beside)
+	}
+	if l := s.Loads[0]; !l.HasRunning || s.Tags[l.Running.Tag].Name != "P-1" {
+		t.Errorf("the README shows %+v", l)
+	}
+	words, _, _ = strings.Cut(words, "\n### ")
+	for _, key := range []string{"plausible", "fastest", "stuck", "spikes", "beside", "running", "both_ways"} {
+		if !strings.Contains(words, "`"+key) {
 			t.Errorf("the README says nothing of %s", key)
 		}
 	}
