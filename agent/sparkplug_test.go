@@ -30,6 +30,11 @@ var loop = sparkplug.Source{Group: "bench", Node: "gw", Device: "loop"}
 
 // payload writes a message of the loop: doubles by alias, in a birth under their names.
 func payload(seq uint64, ms int64, birth bool, values ...float64) []byte {
+	return spelled(seq, ms, birth, 0, []string{"TI", "TO", "FT"}[:len(values)], values...)
+}
+
+// spelled writes one of any source, whose aliases count up from the first.
+func spelled(seq uint64, ms int64, birth bool, first uint64, names []string, values ...float64) []byte {
 	field := func(b []byte, num protowire.Number, v uint64) []byte {
 		return protowire.AppendVarint(protowire.AppendTag(b, num, protowire.VarintType), v)
 	}
@@ -37,10 +42,10 @@ func payload(seq uint64, ms int64, birth bool, values ...float64) []byte {
 	for i, x := range values {
 		var m []byte
 		if birth {
-			m = protowire.AppendString(protowire.AppendTag(m, 1, protowire.BytesType), []string{"TI", "TO", "FT"}[i])
+			m = protowire.AppendString(protowire.AppendTag(m, 1, protowire.BytesType), names[i])
 			m = field(m, 4, 10)
 		}
-		m = field(field(m, 2, uint64(i)), 3, uint64(ms))
+		m = field(field(m, 2, first+uint64(i)), 3, uint64(ms))
 		m = protowire.AppendFixed64(protowire.AppendTag(m, 13, protowire.Fixed64Type), math.Float64bits(x))
 		b = protowire.AppendBytes(protowire.AppendTag(b, 2, protowire.BytesType), m)
 	}

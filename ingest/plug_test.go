@@ -273,3 +273,76 @@ func TestMetricsCostNoAllocation(t *testing.T) {
 		t.Errorf("%v allocations for %d readings", n, len(out))
 	}
 }
+
+// Hostile and broken messages by Sparkplug, each with what is counted for it. Where reason
+// is given the tag is refused; else count looks at the counts of the namespace.
+func TestBadSparkplug(t *testing.T) {
+	varint := func(b []byte, num protowire.Number, v uint64) []byte {
+		return protowire.AppendVarint(protowire.AppendTag(b, num, protowire.VarintType), v)
+	}
+	text := func(b []byte, num protowire.Number, v string) []byte {
+		return protowire.AppendString(protowire.AppendTag(b, num, protowire.BytesType), v)
+	}
+	flow := func(of ...byte) []byte { return text(nil, 2, string(append(text(nil, 1, "flow"), of...))) }
+	double := func(x float64) []byte {
+		return protowire.AppendFixed64(protowire.AppendTag(nil, 13, protowire.Fixed64Type), math.Float64bits(x))
+	}
+	deep := []byte("x")
+	for range 10_000 {
+		deep = text(nil, 18, string(deep[:min(len(deep), 60_000)]))
+	}
+	malformed := func(c sparkplug.Counts) uint64 { return c.Malformed }
+	for name, tt := range map[string]struct {
+		kind    sparkplug.Kind
+		payload []byte
+		reason  Reason
+		count   func(sparkplug.Counts) uint64
+	}{
+		"text":                        {sparkplug.NData, []byte("21.5"), 0, malformed},
+		"JSON":                        {sparkplug.NData, []byte(`{"metrics":[{"name":"flow","value":2}]}`), 0, malformed},
+		"cut":                         {sparkplug.NData, unhex(t, dataHex)[:15], 0, malformed},
+		"cut birth":                   {sparkplug.NBirth, unhex(t, birthHex)[:60], 0, malformed},
+		"cut death":                   {sparkplug.NDeath, unhex(t, deathHex)[:12], 0, malformed},
+		"a length of 2 GiB":           {sparkplug.NData, []byte{0x12, 0xff, 0xff, 0xff, 0xff, 0x07}, 0, malformed},
+		"a group":                     {sparkplug.NData, []byte{0x33, 0x34}, 0, malformed},
+		"more than is read":           {sparkplug.NData, make([]byte, sparkplug.MaxPayload+1), 0, malformed},
+		"zeros":                       {sparkplug.NData, make([]byte, 100), 0, malformed},
+		"an alias nobody told":        {sparkplug.NData, text(nil, 2, string(varint(nil, 2, 77))), 0, func(c sparkplug.Counts) uint64 { return c.UnknownAlias }},
+		"neither name nor alias":      {sparkplug.NData, text(nil, 2, string(double(1))), 0, func(c sparkplug.Counts) uint64 { return c.UnknownAlias }},
+		"a number left out":           {sparkplug.NData, varint(flow(double(1)...), 3, 9), 0, func(c sparkplug.Counts) uint64 { return c.Gaps }},
+		"a number beyond 255":         {sparkplug.NData, varint(flow(double(1)...), 3, 1<<40), 0, func(c sparkplug.Counts) uint64 { return c.Gaps }},
+		"death of another session":    {sparkplug.NDeath, text(nil, 2, string(varint(text(nil, 1, "bdSeq"), 11, 5))), 0, func(c sparkplug.Counts) uint64 { return c.LateDeaths }},
+		"a name of 2 KiB":             {sparkplug.NBirth, text(nil, 2, string(text(nil, 1, strings.Repeat("n", 2048)))), 0, func(c sparkplug.Counts) uint64 { return c.Crowded }},
+		"a name that is no UTF-8":     {sparkplug.NBirth, text(nil, 2, string(text(nil, 1, "\xff"))), 0, func(c sparkplug.Counts) uint64 { return c.Crowded }},
+		"no value":                    {sparkplug.NData, flow(), ValueMissing, nil},
+		"text as a value":             {sparkplug.NData, flow(text(nil, 15, "2.5")...), WrongType, nil},
+		"truth":                       {sparkplug.NData, flow(varint(nil, 14, 1)...), WrongType, nil},
+		"templates in templates":      {sparkplug.NData, flow(deep...), WrongType, nil},
+		"a Double as an integer":      {sparkplug.NData, flow(varint(nil, 10, 2)...), WrongType, nil},
+		"NaN":                         {sparkplug.NData, flow(double(math.NaN())...), NotFinite, nil},
+		"infinite":                    {sparkplug.NData, flow(double(math.Inf(-1))...), NotFinite, nil},
+		"infinite in SI":              {sparkplug.NData, flow(double(1e308)...), NotFinite, nil},
+		"beyond the range":            {sparkplug.NData, flow(double(-1)...), OutOfRange, nil},
+		"1970":                        {sparkplug.NData, flow(append(varint(nil, 3, 12), double(1)...)...), UnsetClock, nil},
+		"seconds for milliseconds":    {sparkplug.NData, flow(append(varint(nil, 3, 1_700_000_000), double(1)...)...), UnsetClock, nil},
+		"an hour ahead":               {sparkplug.NData, flow(append(varint(nil, 3, uint64(millis+3600_000)), double(1)...)...), Ahead, nil},
+		"beyond all time":             {sparkplug.NData, flow(append(varint(nil, 3, math.MaxUint64), double(1)...)...), TimeWrong, nil},
+		"of the past, without a time": {sparkplug.NData, flow(append(varint(nil, 5, 1), double(1)...)...), TimeMissing, nil},
+		"not to be stored":            {sparkplug.NData, flow(append(varint(nil, 6, 1), double(1)...)...), Transient, nil},
+	} {
+		d, err := NewDecoder([]Tag{metric("flow")}, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		d.Decode(works.Topic(sparkplug.NBirth), unhex(t, birthHex), millis*1e6, false, nil)
+		out, known := d.Decode(works.Topic(tt.kind), tt.payload, millis*1e6, false, nil)
+		switch {
+		case !known:
+			t.Errorf("%s: taken for another topic", name)
+		case tt.count != nil && tt.count(d.plug.stats().Counts) != 1:
+			t.Errorf("%s: counts %+v, last %q", name, d.plug.stats(), d.plug.stats().Last)
+		case tt.count == nil && (len(out) != 1 || out[0].Refusal == nil || out[0].Refusal.Reason != tt.reason):
+			t.Errorf("%s: %+v; want %v", name, out, tt.reason)
+		}
+	}
+}
