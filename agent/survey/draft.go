@@ -197,7 +197,7 @@ func Lag(c *Clock) string {
 		return time.Duration(s * float64(time.Second)).Round(10 * time.Millisecond).String()
 	}
 	said := fmt.Sprintf("%s %s ± %s", digits(behind), side, digits(c.Jitter))
-	if quarters := math.Round(behind / 900); quarters >= 1 && math.Abs(behind-900*quarters) < 30 && c.Jitter < 30 {
+	if quarters := math.Round(behind / 900); quarters >= 1 && behind < 15*3600 && math.Abs(behind-900*quarters) < 30 && c.Jitter < 30 {
 		said += ", as of another time zone"
 	}
 	return said

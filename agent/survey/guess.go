@@ -112,7 +112,7 @@ func names(s *Signal) []string {
 		all = strings.Split(s.Metric, "/")
 		slices.Reverse(all)
 	}
-	for p := s.Samples + s.Value; p != ""; p = parent(p) {
+	for p := s.Value; p != ""; p = parent(p) {
 		if k := key(p); !slices.Contains(valueWords, plain(k)) {
 			all = append(all, k)
 		}

@@ -73,7 +73,7 @@ func own(s *Signal) []string {
 	if s.Metric != "" {
 		parts = append(parts, slices.DeleteFunc(strings.Split(s.Metric, "/"), func(level string) bool { return level == "" || slices.Contains(valueWords, plain(level)) })...)
 	}
-	for _, token := range strings.Split(s.Samples+s.Value, "/")[1:] {
+	for _, token := range strings.Split(s.Value, "/")[1:] {
 		if !slices.Contains(valueWords, plain(token)) && token != "" {
 			parts = append(parts, key("/"+token))
 		}

@@ -52,7 +52,7 @@ var (
 	qualityWords = []string{"q", "quality", "qual", "status", "statuscode", "state", "qc", "opcquality"}
 	unitWords    = []string{"u", "unit", "units", "uom", "engunit", "eu"}
 	valueWords   = []string{"v", "val", "value", "reading", "pv", "measurement", "data"}
-	otherWords   = []string{"seq", "sequence", "id", "msgid", "version", "ver", "schema", "alias", "rssi", "snr", "battery", "uptime", "index", "count", "n"}
+	otherWords   = []string{"seq", "sequence", "id", "msgid", "version", "ver", "schema", "alias", "rssi", "snr", "battery", "uptime", "index", "count", "n", "bdseq"}
 )
 
 // plain is a name in small letters, without what parts its words.
@@ -77,9 +77,9 @@ func (t *topic) measures(pointer string) bool {
 	switch {
 	case s.numbers == 0 || s.numbers < s.texts:
 		return false
-	case pointer == "" || t.plug:
+	case pointer == "":
 		return true
-	case s.timed() && (named(pointer, timeWords) || s.rising()):
+	case !t.plug && s.timed() && (named(pointer, timeWords) || s.rising()):
 		return false
 	}
 	return !named(pointer, qualityWords) && !named(pointer, otherWords)

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 	"os"
+	"regexp"
 	"strings"
 	"testing"
 	"time"
@@ -202,7 +203,7 @@ func plant() map[string][]string {
 		"creamery/hw/PT-201": stamped(`{"v": %g, "ts": %d}`, 0, 6.1, 6.1),
 		"hall/boiler_supply": {"80", "81"}, "hall/lamp": {"1"},
 		"east/heat meter/flow_m3h": {"4", "5"}, "east/heat meter/supply temp": {"70", "71"}, "east/heat meter/return temp": {"50", "50"},
-		`odd/"quoted": #, {[x]}`: {`{"temp": 3, "é": 4}`},
+		`odd/"quoted": , {[x]}`: {`{"temp": 3, "é": 4}`},
 	}
 }
 
@@ -223,14 +224,21 @@ func TestLoadsByNames(t *testing.T) {
 // Of a draft a check finds nothing wrong but what is to be filled in, however odd topics are.
 func TestDraftWantsNothingButItsBlanks(t *testing.T) {
 	var text strings.Builder
-	d := Draft{Broker: site.Broker{URL: "mqtt://127.0.0.1:1883", Username: "survey", PasswordFile: "/etc/heatreeve/password: #"}, Topics: heard(plant()).Topics(), At: time.Unix(0, epoch), For: 30 * time.Second}
+	s := heard(plant())
+	raw, err := hex.DecodeString(birth)
+	if err != nil {
+		t.Fatal(err)
+	}
+	s.Hear(Message{Topic: "spBv1.0/works/NBIRTH/plc", Payload: raw, At: epoch})
+	s.Hear(Message{Topic: "list/TT-9", Payload: fmt.Appendf(nil, `{"d": [{"t": %d, "v": 3.1}]}`, epoch/1e6), At: epoch})
+	d := Draft{Broker: site.Broker{URL: "mqtt://127.0.0.1:1883", Username: "survey", PasswordFile: "/etc/heatreeve/password: #"}, Topics: s.Topics(), At: time.Unix(0, epoch), For: 30 * time.Second}
 	if err := d.Write(&text); err != nil {
 		t.Fatal(err)
 	}
 	if os.Getenv("SHOW") != "" {
 		t.Log(text.String())
 	}
-	_, err := site.Parse("draft.yaml", []byte(text.String()))
+	_, err = site.Parse("draft.yaml", []byte(text.String()))
 	var faults site.Faults
 	if !errors.As(err, &faults) {
 		t.Fatalf("%v, want faults", err)
@@ -239,6 +247,13 @@ func TestDraftWantsNothingButItsBlanks(t *testing.T) {
 		if f.Message != "is still to be filled in" {
 			t.Errorf("%v\n%s", f, text.String())
 		}
+	}
+	filled := strings.NewReplacer("timezone: ___", "timezone: UTC", "site: ___", "site: A", "fluid: ___", "fluid: water", "accuracy: ___", "accuracy: 1 % of reading",
+		"pressure: ___", "pressure: 3 bar", "meter_at: ___", "meter_at: inlet").Replace(text.String())
+	filled = regexp.MustCompile(`(  PT-[^:]*: .*)unit: ___`).ReplaceAllString(filled, "${1}unit: barg")
+	filled = strings.ReplaceAll(filled, "unit: ___", "unit: m3/h")
+	if _, err := site.Parse("draft.yaml", []byte(filled)); err != nil {
+		t.Errorf("filled in: %v\n%s", err, filled)
 	}
 }
 
