@@ -37,7 +37,7 @@ var arrows = map[string][]string{
 	"agent/proving": {
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
-	"agent/working": {"agent/loads", "agent/design", "agent/site", "thermo", "thermo/unit"},
+	"agent/working": {"agent/loads", "agent/design", "agent/site", "ingest/quality", "thermo", "thermo/unit"},
 	"agent/survey": {
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},

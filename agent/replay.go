@@ -58,7 +58,8 @@ func newReplay(db *store.Store, s *site.Site, load int) *replay {
 	return r
 }
 
-// take adds a tag, and that of its source's life, and returns its new index.
+// take adds a tag, with that of its source's life and the sensors beside it, and returns its
+// new index.
 func (r *replay) take(all []loads.Tag, tag int) int {
 	if i := slices.Index(r.tags, tag); i >= 0 {
 		return i
@@ -69,6 +70,15 @@ func (r *replay) take(all []loads.Tag, tag int) int {
 	if t := all[tag]; t.OnChange {
 		alive := r.take(all, t.Alive)
 		r.cfg.Tags[i].Alive = alive
+	}
+	if t := all[tag]; t.HasBeside {
+		beside := r.take(all, t.Beside)
+		r.cfg.Tags[i].Beside = beside
+	}
+	for other := range all { // that stand beside it
+		if all[other].HasBeside && all[other].Beside == tag {
+			r.take(all, other)
+		}
 	}
 	return i
 }
@@ -106,8 +116,8 @@ func (r *replay) collect(g int64) error {
 	return nil
 }
 
-// reach is how far back the load remembers: at least what its rates are fitted over, and
-// what its verdict rests on.
+// reach is how far back the load remembers: at least what its rates are fitted over, what
+// its verdict rests on, and what a test on one of its signals looks at.
 func (r *replay) reach() int64 {
 	l := &r.site.Loads[r.load]
 	span := 3 * int64(l.Design.Lasting)
@@ -115,6 +125,11 @@ func (r *replay) reach() int64 {
 		span = max(span, 3*int64(l.Vessel.Over))
 	} else {
 		span = max(span, 3*int64(l.Stream.StoredOver))
+	}
+	for i := range r.cfg.Tags {
+		if s := r.cfg.Tags[i].Screen; s != nil {
+			span = max(span, 2*s.StuckAfter)
+		}
 	}
 	return max(leastReplay, span)
 }

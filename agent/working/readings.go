@@ -141,13 +141,21 @@ func (p *page) counter() {
 	tag, q := &p.Site.Tags[in.Source.Tag], p.quantity(in)
 	of := map[string]string{"m3/s": "m3", "kg/s": "kg", "mol/s": "mol"}[q.unit]
 	p.begin("Counter")
+	if tag.Counter.Each {
+		p.rate(q, c, p.given("N", "counted since the message before", c.Amount, of, 9, "as it is told"))
+		return
+	}
 	was := p.converted(quantity{"N1", "count before", of, 1}, tag, c.Before, 9)
 	is := p.converted(quantity{"N2", "count", of, 1}, tag, c.Value, 9)
 	f := is.minus(was)
 	if c.Value < c.Before {
 		f = f.plus(named("roll-over", tag.Counter.Modulus))
 	}
-	amount := p.worked("N", "counted between them", f, c.Amount, of, 9, "")
+	p.rate(q, c, p.worked("N", "counted between them", f, c.Amount, of, 9, ""))
+}
+
+// rate writes the mean flow of a count.
+func (p *page) rate(q quantity, c *loads.Count, amount term) {
 	span := p.given("t", fmt.Sprintf("time between, to %s", p.clock(c.To)), float64(c.To-c.From)/1e9, "s", 9, "")
 	if !p.Basis.Figure.Idle {
 		x := c.Amount / (float64(c.To-c.From) / 1e9)

@@ -1,11 +1,13 @@
 package working
 
 import (
+	"fmt"
 	"time"
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
+	"heatreeve/ingest/quality"
 )
 
 // Subject is what a working is of.
@@ -71,8 +73,20 @@ func (p *page) write() {
 		p.counter()
 		p.idle()
 	}
+	p.quality()
 	p.note(f.Note)
 	p.verdict()
+}
+
+// quality tells how far the readings can be relied on.
+func (p *page) quality() {
+	f := &p.Basis.Figure
+	p.Quality = f.Mark.Quality().String()
+	if f.Mark == quality.None {
+		return
+	}
+	p.Reason, p.By = f.Mark.String(), f.By
+	p.note(fmt.Sprintf("quality %s by tag %q: %s", p.Quality, p.By, p.Reason))
 }
 
 // title is one that names the fluid.

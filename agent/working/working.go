@@ -23,14 +23,18 @@ type Working struct {
 	Span float64   `json:"span_s"` // its length
 	// Duty, positive in the load's service, and its standard uncertainty are null where there
 	// is none.
-	Duty        *float64  `json:"duty_W"`
-	Uncertainty *float64  `json:"standard_uncertainty_W"`
-	Factor      float64   `json:"coverage_factor"`
-	Idle        bool      `json:"idle"`
-	Fault       string    `json:"fault,omitempty"` // why there is no duty, in a word or two
-	Verdict     string    `json:"verdict,omitempty"`
-	Sections    []Section `json:"sections"`
-	Notes       []string  `json:"notes,omitempty"`
+	Duty        *float64 `json:"duty_W"`
+	Uncertainty *float64 `json:"standard_uncertainty_W"`
+	Factor      float64  `json:"coverage_factor"`
+	// Quality is the worst of the readings that were used, with its reason and their tag.
+	Quality  string    `json:"quality,omitempty"`
+	Reason   string    `json:"quality_reason,omitempty"`
+	By       string    `json:"quality_by,omitempty"`
+	Idle     bool      `json:"idle"`
+	Fault    string    `json:"fault,omitempty"` // why there is no duty, in a word or two
+	Verdict  string    `json:"verdict,omitempty"`
+	Sections []Section `json:"sections"`
+	Notes    []string  `json:"notes,omitempty"`
 }
 
 // Section is a step of the working.
