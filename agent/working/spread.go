@@ -53,7 +53,7 @@ func (p *page) streamSpread() {
 			share = negative(share)
 		}
 		s.lasting = append(s.lasting, p.share("sC", "share of the heat capacity, known within 10 %", share, f.Share[loads.PartContent]))
-		u := p.given("uT", "uncertainty of the mean rise", b.RiseError, "K/s", place(b.RiseError, coarse+1), "scatter about the lines, and steps of the numbers")
+		u := p.given("uT", "uncertainty of the mean rise", b.RiseError, "K/s", place(b.RiseError, coarse+2), "scatter about the lines, and steps of the numbers")
 		C := p.load.Stream.Stored
 		s.random = append(s.random, p.share("rC", "random share of the mean rise", p.at["C"].times(u), C*b.RiseError))
 	}
@@ -74,7 +74,7 @@ func negative(t term) term {
 
 // share writes a contribution to the uncertainty of the duty, W, in kW.
 func (p *page) share(symbol, words string, f term, w float64) term {
-	return p.worked(symbol, words, f, w/1e3, "kW", place(w/1e3, coarse), "")
+	return p.worked(symbol, words, f, w/1e3, "kW", place(w/1e3, coarse+1), "")
 }
 
 // input writes the shares of one input.
@@ -105,7 +105,7 @@ func (p *page) input(in *loads.Input, s *shares) {
 	}
 	if in.Scatter > 0 && f.Random > 0 {
 		sd := math.Sqrt(in.Scatter) / q.size
-		r := p.given("z"+q.symbol, in.Name+", random, of one reading", sd, q.unit, place(sd, coarse+1), byReadings)
+		r := p.given("z"+q.symbol, in.Name+", random, of one reading", sd, q.unit, place(sd, coarse+2), byReadings)
 		s.random = append(s.random, p.share("r"+q.symbol, "random share of the "+in.Name, c.times(r), in.By*sd*q.size))
 	}
 }
@@ -194,7 +194,7 @@ func (p *page) ofProperty(s *shares, part loads.Part, symbol, words string, of t
 	if share == 0 || w == 0 {
 		return
 	}
-	u := p.given("u"+symbol, "relative uncertainty of the "+words, share/w, "1", place(share/w, coarse+1), p.citation)
+	u := p.given("u"+symbol, "relative uncertainty of the "+words, share/w, "1", place(share/w, coarse+2), p.citation)
 	s.lasting = append(s.lasting, p.share("s"+symbol, "share of the "+words, of.times(u), share))
 }
 

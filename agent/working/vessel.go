@@ -81,7 +81,7 @@ func (p *page) atRest() {
 // slopeError writes the standard error of the slope.
 func (p *page) slopeError() term {
 	e := p.Basis.Vessel.Rate.Error
-	return p.given("udT", "standard error of the rise", e, "K/s", place(e, coarse+1), "scatter about the line, and steps of the numbers")
+	return p.given("udT", "standard error of the rise", e, "K/s", place(e, coarse+2), "scatter about the line, and steps of the numbers")
 }
 
 // vesselSpread writes the uncertainty of a vessel.
@@ -99,7 +99,7 @@ func (p *page) vesselSpread() {
 		s.lasting = append(s.lasting, p.share("sm", "share of the content, its wall and its thermometer", t, f.Share[loads.PartContent]))
 	}
 	if share := f.Share[loads.PartPressure]; share != 0 {
-		s.lasting = append(s.lasting, p.given("sp", "share of the pressure, by its accuracy", share/1e3, "kW", place(share/1e3, coarse), bySwing))
+		s.lasting = append(s.lasting, p.given("sp", "share of the pressure, by its accuracy", share/1e3, "kW", place(share/1e3, coarse+1), bySwing))
 	}
 	p.vesselProperties(&s)
 	p.vesselRandom(&s)
@@ -110,7 +110,7 @@ func (p *page) vesselSpread() {
 func (p *page) contentShares() (all []term) {
 	b := p.Basis.Vessel
 	if b.ByState != 0 {
-		all = append(all, p.given("s1", "by the temperature at which density and specific heat are taken", b.ByState/1e3, "kW", place(b.ByState/1e3, coarse), bySwing))
+		all = append(all, p.given("s1", "by the temperature at which density and specific heat are taken", b.ByState/1e3, "kW", place(b.ByState/1e3, coarse+1), bySwing))
 	}
 	in := &p.Basis.Inputs[2]
 	if b.ByAmount != 0 {
@@ -159,7 +159,7 @@ func (p *page) vesselRandom(s *shares) {
 	s.random = append(s.random, p.share("rT", "random share of the rise", p.at["capacity"].times(u), p.Basis.Vessel.Capacity*p.Basis.Vessel.Rate.Error))
 	if in := &p.Basis.Inputs[2]; in.Scatter > 0 && in.By != 0 {
 		q, sd := p.quantity(in), math.Sqrt(in.Scatter)
-		z := p.given("z"+q.symbol, "content, random, of one reading", sd, q.unit, place(sd, coarse+1), byReadings)
+		z := p.given("z"+q.symbol, "content, random, of one reading", sd, q.unit, place(sd, coarse+2), byReadings)
 		s.random = append(s.random, p.share("r"+q.symbol, "random share of the content", named("c"+q.symbol, fixedValue(in.By/1e3, coarse+2)).times(z), in.By*sd))
 	}
 }
