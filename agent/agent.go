@@ -26,7 +26,6 @@ import (
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/site"
 	"heatreeve/agent/view"
-	"heatreeve/ingest"
 	"heatreeve/store"
 )
 
@@ -55,7 +54,8 @@ type Agent struct {
 	site    *site.Site
 	o       Options
 	clock   *stepless // nil where Options give one
-	session *ingest.Session
+	intakes []*intake
+	reached chan struct{} // one slot: a broker has sent all that it sends without an acknowledgement
 	latest  atomic.Pointer[view.Snapshot]
 	health  health
 	commits prometheus.Histogram
@@ -71,11 +71,12 @@ func New(s *site.Site, o Options) (*Agent, error) {
 		clock = systemClock(o.Log)
 		o.Now = clock.Now
 	}
-	session, err := newSession(s, o)
+	reached := make(chan struct{}, 1)
+	intakes, err := newIntakes(s, o, reached)
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, clock: clock, session: session, commits: metrics.CommitSeconds(), questions: make(chan question)}
+	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question)}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil
@@ -130,7 +131,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 	through := books.through.Load()
 	g.Go(func() error {
 		a.awaitClock(sessionCtx, through)
-		return a.session.Run(sessionCtx)
+		return a.connect(sessionCtx)
 	})
 	g.Go(func() error {
 		defer endSession()
@@ -139,6 +140,15 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 	g.Go(func() error {
 		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions)))
 	})
+	return g.Wait()
+}
+
+// connect keeps the sessions with all brokers until ctx ends.
+func (a *Agent) connect(ctx context.Context) error {
+	var g errgroup.Group
+	for _, f := range a.intakes {
+		g.Go(func() error { return f.session.Run(ctx) })
+	}
 	return g.Wait()
 }
 

@@ -3,6 +3,7 @@ package agent
 import (
 	"context"
 	"fmt"
+	"slices"
 	"time"
 
 	"heatreeve/ingest"
@@ -29,29 +30,23 @@ const (
 type rhythm struct {
 	pace      pace
 	books     *ledger
-	received  []ingest.Received // taken in this beat
-	unacked   []ingest.Received // taken and not yet on disk
+	intakes   []*intake
 	readings  []ingest.Reading
-	stats     ingest.Stats
+	standings []standing    // of the brokers
 	shifted   time.Duration // of the clock, as the pace knows
 	committed time.Time     // system clock
 	trimmed   time.Time
-	window    window
-	told      bool   // that the broker waits
-	hold      hold   // while the disk takes nothing
-	rate      rate   // of messages, while it does
 	late      []bool // tags whose first late reading has been told
 }
 
-// beats moves the accounts forward until ctx ends, then commits what is left.
-func (a *Agent) beats(ctx context.Context, books *ledger) error {
-	notify("READY=1")
-	defer notify("STOPPING=1")
-	now := time.Now()
+// newRhythm begins where the books stand.
+func (a *Agent) newRhythm(books *ledger, now time.Time) *rhythm {
 	r := &rhythm{
-		pace:  newPace(len(a.site.Tags), a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)),
-		books: books, committed: now, trimmed: now, late: make([]bool, len(a.site.Tags)),
+		pace:  newPace(brokerOf(a.site), a.site.Timing.Lateness, a.site.Timing.Commit, hasStamps(a.site)),
+		books: books, intakes: a.intakes, standings: make([]standing, len(a.intakes)),
+		committed: now, trimmed: now, late: make([]bool, len(a.site.Tags)),
 	}
+	r.pace.grace = grace(a.site)
 	s := books.accounts.engine.Snapshot()
 	r.pace.through = s.Through
 	for i, t := range s.Tags {
@@ -59,14 +54,27 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 			r.pace.last[i] = t.Newest
 		}
 	}
+	return r
+}
+
+// wakeful reports whether the next look should not wait for the beat.
+func (r *rhythm) wakeful() bool {
+	return r.books.fault != "" || slices.ContainsFunc(r.intakes, func(f *intake) bool { return f.window.wakeful() })
+}
+
+// beats moves the accounts forward until ctx ends, then commits what is left.
+func (a *Agent) beats(ctx context.Context, books *ledger) error {
+	notify("READY=1")
+	defer notify("STOPPING=1")
+	r := a.newRhythm(books, time.Now())
 	a.tellFuture(r.pace.through)
-	a.endMetrics(r, s)
+	a.endMetrics(r, books.accounts.engine.Snapshot())
 	ticker, look := time.NewTicker(a.site.Timing.Beat), time.NewTimer(lookEvery)
 	defer ticker.Stop()
 	defer look.Stop()
 	a.beat(r, time.Now())
 	for looking := true; ; {
-		if !looking && (r.window.wakeful() || r.books.fault != "") {
+		if !looking && r.wakeful() {
 			looking = true
 			look.Reset(lookEvery)
 		}
@@ -79,8 +87,8 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 		case <-look.C:
 			looking = false
 			a.look(r, time.Now())
-		case <-a.session.Reached():
-			a.reached(r, time.Now())
+		case <-a.reached:
+			a.atLimit(r, time.Now())
 		case q := <-a.questions:
 			a.answer(r, q)
 		case <-ctx.Done():
@@ -98,50 +106,56 @@ func (a *Agent) tellFuture(through int64) {
 	}
 }
 
-// look commits at once where the broker waits for acknowledgements.
+// look commits at once where a broker waits for acknowledgements.
 func (a *Agent) look(r *rhythm, system time.Time) {
-	commit := r.window.look(a.session.Waiting())
-	a.session.TellAt(r.window.limit)
-	if r.window.proven && !r.told {
-		r.told = true
-		a.o.Log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", "messages", r.window.acked)
+	commit := false
+	for _, f := range r.intakes {
+		commit = f.look(a.o.Log) || commit
 	}
 	if commit {
 		a.take(r)
 		a.commit(r, system, false)
 	}
-	if r.books.fault != "" && r.hold.over(system, r.window.stuck(), r.rate.perSecond) {
-		a.goOn(r)
+	for _, f := range r.intakes {
+		if r.books.fault != "" && f.hold.over(system, f.window.stuck(), f.rate.perSecond, f.queue) {
+			a.goOn(r, f)
+		}
 	}
 }
 
-// reached commits at once where the broker has sent all that it sends without an
+// atLimit commits at once where a broker has sent all that it sends without an
 // acknowledgement.
-func (a *Agent) reached(r *rhythm, system time.Time) {
-	waiting := a.session.Waiting()
-	switch {
-	case r.hold.inMemory:
-		a.goOn(r)
-	case r.window.reached(waiting):
+func (a *Agent) atLimit(r *rhythm, system time.Time) {
+	commit := false
+	for _, f := range r.intakes {
+		switch {
+		case f.hold.inMemory:
+			a.goOn(r, f)
+		case f.window.reached(f.session.Waiting()):
+			commit = true
+		}
+	}
+	if commit {
 		a.put(r)
 		a.commit(r, system, false)
 	}
-	a.session.TellAt(r.window.limit)
+	for _, f := range r.intakes {
+		f.session.TellAt(f.window.limit)
+	}
 }
 
 // goOn acknowledges what is in memory only: the disk takes nothing, the broker has
 // stopped sending, and its own queue would be full before long. What the accounts hold
 // goes into the next checkpoint; a crash before it loses what came since the last
 // commit.
-func (a *Agent) goOn(r *rhythm) {
-	if !r.hold.inMemory {
-		a.o.Log.Warn("the disk takes nothing, and the broker has stopped sending and must be taken to drop readings before long: going on in memory; a crash now would lose what has come since the last commit")
+func (a *Agent) goOn(r *rhythm, f *intake) {
+	if !f.hold.inMemory {
+		a.o.Log.Warn("the disk takes nothing, and the broker has stopped sending and must be taken to drop readings before long: going on in memory; a crash now would lose what has come since the last commit", f.label()...)
 	}
 	a.put(r)
-	r.hold.inMemory, r.books.forced = true, true
-	a.session.Ack(r.unacked)
-	r.unacked = emptied(r.unacked)
-	r.window.failed()
+	f.hold.inMemory, r.books.forced = true, true
+	f.acknowledge()
+	f.window.failed()
 }
 
 // beat takes what came, computes, commits when due, and publishes.
@@ -178,12 +192,10 @@ func (a *Agent) last(r *rhythm) error {
 	return nil
 }
 
-// take looks at the session and puts what came through the accounts.
+// take looks at the sessions and puts what came through the accounts.
 func (a *Agent) take(r *rhythm) {
-	before := r.stats.Connections
-	r.stats = a.session.Stats()
-	if r.stats.Connections != before {
-		r.window.connected()
+	for _, f := range r.intakes {
+		f.take()
 	}
 	a.put(r)
 }
@@ -192,24 +204,34 @@ func (a *Agent) take(r *rhythm) {
 // with a backlog and no more than the lateness of it ever waits.
 func (a *Agent) put(r *rhythm) {
 	now := a.o.Now()
-	if a.clock != nil {
-		_, shifted := a.clock.state()
-		r.pace.shift(shifted - r.shifted)
-		if by := shifted - r.shifted; by != 0 {
-			r.books.happened(eventClock, fmt.Sprintf("the clock of this machine was set by %v, and its new setting is followed", by.Round(time.Millisecond)))
-		}
-		r.shifted = shifted
+	a.followClock(r)
+	for i, f := range r.intakes {
+		f.received = f.session.Take(emptied(f.received))
+		r.standings[i] = f.standing(r.books.fault != "")
 	}
-	r.received = a.session.Take(emptied(r.received))
-	heldBack := a.session.Waiting() >= leastWindow && (r.window.eager || r.books.fault != "")
-	for rest := r.received; ; {
-		piece := rest[:min(len(rest), pieceReadings)]
-		rest = rest[len(piece):]
-		r.account(piece, now, heldBack)
-		if len(rest) == 0 {
-			return
+	silent := true
+	for _, f := range r.intakes {
+		for piece := range slices.Chunk(f.received, pieceReadings) {
+			r.account(f, piece, now)
+			silent = false
 		}
 	}
+	if silent {
+		r.account(nil, nil, now)
+	}
+}
+
+// followClock takes over what the clock was set by.
+func (a *Agent) followClock(r *rhythm) {
+	if a.clock == nil {
+		return
+	}
+	_, shifted := a.clock.state()
+	r.pace.shift(shifted - r.shifted)
+	if by := shifted - r.shifted; by != 0 {
+		r.books.happened(eventClock, fmt.Sprintf("the clock of this machine was set by %v, and its new setting is followed", by.Round(time.Millisecond)))
+	}
+	r.shifted = shifted
 }
 
 // emptied returns s to be filled again. It holds nothing any more, nor, unless it was
@@ -223,24 +245,26 @@ func emptied[T any](s []T) []T {
 }
 
 // account puts a piece through the accounts, once they have room for it.
-func (r *rhythm) account(piece []ingest.Received, now time.Time, heldBack bool) {
+func (r *rhythm) account(f *intake, piece []ingest.Received, now time.Time) {
 	if at := r.books.accounts.engine.Relief(len(piece)); at > r.pace.through {
 		r.books.beat(nil, r.pace.press(at, now))
 	}
-	r.note(piece, now)
-	r.books.beat(r.readings, r.pace.advance(now, r.stats.Connected, heldBack))
+	r.note(f, piece, now)
+	r.books.beat(r.readings, r.pace.advance(now, r.standings...))
 }
 
 // note tells the pace of what came, and keeps what is to be acknowledged.
-func (r *rhythm) note(piece []ingest.Received, now time.Time) {
+func (r *rhythm) note(f *intake, piece []ingest.Received, now time.Time) {
 	r.readings = r.readings[:0]
 	for _, x := range piece {
-		r.readings = append(r.readings, x.Reading)
+		reading := x.Reading
+		reading.Tag = f.tags[x.Tag]
+		r.readings = append(r.readings, reading)
 		if !x.Retained {
-			r.pace.reading(x.Tag, x.At, x.Stamped, x.InOrder, now)
+			r.pace.reading(reading.Tag, x.At, x.Stamped, x.InOrder, now)
 		}
 		if x.Acknowledgeable() {
-			r.unacked = append(r.unacked, x)
+			f.unacked = append(f.unacked, x)
 		}
 	}
 }
@@ -264,17 +288,16 @@ func (a *Agent) commit(r *rhythm, system time.Time, checkpoint bool) bool {
 	}
 	a.commits.Observe(time.Since(begun).Seconds())
 	if err != nil {
-		r.window.failed()
+		for _, f := range r.intakes {
+			f.window.failed()
+		}
 		return false
 	}
-	if r.hold.inMemory {
+	if slices.ContainsFunc(r.intakes, func(f *intake) bool { return f.hold.inMemory }) {
 		a.o.Log.Info("the history is written again")
 	}
-	r.hold = hold{}
-	waiting := a.session.Waiting()
-	a.session.Ack(r.unacked)
-	r.rate.note(max(0, waiting-a.session.Waiting()), system)
-	r.window.committed(waiting)
-	r.unacked = emptied(r.unacked)
+	for _, f := range r.intakes {
+		f.committed(system)
+	}
 	return true
 }

@@ -126,15 +126,15 @@ func TestEachSettingMustStand(t *testing.T) {
 func TestSettingTheClockIsNoSilence(t *testing.T) {
 	for _, by := range []time.Duration{1000 * time.Hour, -time.Hour} {
 		m := newMachine()
-		p := newPace(1, 5*time.Second, 10*time.Second, true)
+		p := newPace(make([]int, 1), 5*time.Second, 10*time.Second, true)
 		start := m.Now()
 		p.reading(0, start.UnixNano(), true, true, start)
-		p.advance(start, true, false)
+		p.advance(start, standing{true, false})
 		m.pass(10 * time.Second)
-		p.advance(m.Now(), true, false)
+		p.advance(m.Now(), standing{true, false})
 		for range 5 {
 			m.pass(time.Second)
-			p.advance(m.Now(), true, false)
+			p.advance(m.Now(), standing{true, false})
 		}
 		if want := start.Add(10 * time.Second).UnixNano(); p.through != want { // 15 s of silence, less the lateness
 			t.Fatalf("through %v before the setting, want %v", time.Unix(0, p.through), time.Unix(0, want))
@@ -148,7 +148,7 @@ func TestSettingTheClockIsNoSilence(t *testing.T) {
 				p.shift(shifted - before)
 				before, steps = shifted, steps+1
 			}
-			p.advance(now, true, false)
+			p.advance(now, standing{true, false})
 		}
 		want := start.Add(m.passed - settling - 5*time.Second).UnixNano()
 		if by < 0 { // it waits, once the setting is followed, for the clock to come where it was
@@ -181,7 +181,7 @@ func bare(t *testing.T, m *machine, seconds int, before func(second int)) loads.
 	site := parsed(t, bareSite)
 	l, shut := open(t, site, filepath.Join(t.TempDir(), "h.db"), store.Options{})
 	defer shut()
-	p := newPace(3, 5*time.Second, 10*time.Second, hasStamps(site))
+	p := newPace(make([]int, 3), 5*time.Second, 10*time.Second, hasStamps(site))
 	var followed time.Duration
 	for s := range seconds {
 		before(s)
@@ -196,7 +196,7 @@ func bare(t *testing.T, m *machine, seconds int, before func(second int)) loads.
 			in[i] = ingest.Reading{Tag: i, At: now.UnixNano(), Value: v}
 			p.reading(i, now.UnixNano(), false, true, now)
 		}
-		l.beat(in, p.advance(now, true, false))
+		l.beat(in, p.advance(now, standing{true, false}))
 	}
 	return l.registers()[0]
 }

@@ -236,14 +236,14 @@ func TestReportHasEvents(t *testing.T) {
 func TestSetClockIsTold(t *testing.T) {
 	m := newMachine()
 	s := parsed(t, benchSite)
-	session, err := newSession(s, Options{Log: slog.New(slog.DiscardHandler)})
+	intakes, err := newIntakes(s, Options{Log: slog.New(slog.DiscardHandler)}, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
-	a := &Agent{site: s, clock: m.stepless, session: session, o: Options{Now: m.Now, Log: slog.New(slog.DiscardHandler)}}
+	a := &Agent{site: s, clock: m.stepless, intakes: intakes, o: Options{Now: m.Now, Log: slog.New(slog.DiscardHandler)}}
 	l, shut := openAt(t, s, filepath.Join(t.TempDir(), "h.db"), m.Now)
 	defer shut()
-	r := &rhythm{pace: newPace(len(s.Tags), s.Timing.Lateness, s.Timing.Commit, hasStamps(s)), books: l, late: make([]bool, len(s.Tags))}
+	r := a.newRhythm(l, m.Now())
 	m.pass(settling)
 	m.offset = time.Hour
 	for range 400 {

@@ -39,8 +39,10 @@ func (h *health) ready() []string {
 	if ahead := time.Unix(0, s.At).Sub(h.now()); ahead > time.Minute {
 		wrong = append(wrong, fmt.Sprintf("the accounts stand %s ahead of this machine's clock: set the clock, or give another data folder", ahead.Round(time.Second)))
 	}
-	if !s.Broker.Connected {
-		wrong = append(wrong, strings.TrimSuffix("broker is not connected: "+s.Broker.Fault, ": "))
+	for _, b := range s.AllBrokers() {
+		if !b.Connected {
+			wrong = append(wrong, strings.TrimSuffix(b.Called()+" is not connected: "+b.Fault, ": "))
+		}
 	}
 	if s.History.Fault != "" {
 		wrong = append(wrong, "history: "+s.History.Fault)

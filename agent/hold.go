@@ -3,10 +3,9 @@ package agent
 import "time"
 
 const (
-	// brokerQueue is how many messages a broker that has stopped sending is trusted to
-	// keep; mosquitto, unless told otherwise, keeps 1,000 and drops the rest, and a
-	// burst must find room as well.
-	brokerQueue = 600
+	// trusted is the part of its queue that a broker which has stopped sending is trusted
+	// to keep messages in; a burst must find room as well.
+	trusted = 0.6
 	// longestHold is how long readings are left with a broker that has stopped sending,
 	// however seldom they come: event time stands still meanwhile, up to longestWait.
 	longestHold = 4 * time.Minute
@@ -25,8 +24,8 @@ type hold struct {
 }
 
 // over reports whether to go on in memory. Stuck says whether the broker has stopped
-// sending, perSecond how many messages came before it did.
-func (h *hold) over(now time.Time, stuck bool, perSecond float64) bool {
+// sending, perSecond how many messages came before it did, and queue how many it keeps.
+func (h *hold) over(now time.Time, stuck bool, perSecond float64, queue int) bool {
 	switch {
 	case h.inMemory:
 		return true
@@ -37,7 +36,7 @@ func (h *hold) over(now time.Time, stuck bool, perSecond float64) bool {
 		h.since = now.Add(-stuckLooks * lookEvery) // when the last message came
 	}
 	held := now.Sub(h.since)
-	return held >= longestHold || held.Seconds()*perSecond >= brokerQueue
+	return held >= longestHold || held.Seconds()*perSecond >= trusted*float64(queue)
 }
 
 const (

@@ -10,7 +10,7 @@ import (
 func TestNothingIsAcknowledgedWhileTheBrokerSends(t *testing.T) {
 	var h hold
 	for s := range int64(24 * 3600) {
-		if h.over(wall(s*sec), false, 1000) {
+		if h.over(wall(s*sec), false, 1000, 1000) {
 			t.Fatalf("gives in after %d s", s)
 		}
 	}
@@ -27,7 +27,7 @@ func TestHoldLastsAsLongAsTheBrokersQueue(t *testing.T) {
 	} {
 		var h hold
 		got := int64(0) // s after it was seen
-		for got < 1000 && !h.over(wall((1000+got)*sec), true, tt.perSecond) {
+		for got < 1000 && !h.over(wall((1000+got)*sec), true, tt.perSecond, 1000) {
 			got++
 		}
 		if got != tt.want {
@@ -40,7 +40,7 @@ func TestHoldLastsAsLongAsTheBrokersQueue(t *testing.T) {
 func TestHoldBeginsAgain(t *testing.T) {
 	var h hold
 	for s := range int64(1000) {
-		if h.over(wall(s*sec), s%100 != 0, 4) {
+		if h.over(wall(s*sec), s%100 != 0, 4, 1000) {
 			t.Fatalf("gives in after %d s, 100 s at the most without a message", s)
 		}
 	}
@@ -49,7 +49,7 @@ func TestHoldBeginsAgain(t *testing.T) {
 // In memory it stays until the disk takes something.
 func TestInMemoryStays(t *testing.T) {
 	h := hold{inMemory: true}
-	if !h.over(wall(sec), false, 0) {
+	if !h.over(wall(sec), false, 0, 1000) {
 		t.Error("waits again though what came before is acknowledged already")
 	}
 }

@@ -2,6 +2,7 @@ package agent
 
 import (
 	"math"
+	"slices"
 	"time"
 )
 
@@ -17,6 +18,9 @@ const (
 	firstReach = 24 * time.Hour
 	// longestWait is how long a broker is believed to hold back what leads.
 	longestWait = 5 * time.Minute
+	// graceAway is the longest that event time waits for one broker of several that is away:
+	// a short loss costs nothing.
+	graceAway = 20 * time.Second
 	// lagSpan is how long the least lag of the stamps behind the clock counts.
 	lagSpan = 10 * time.Minute
 )
@@ -36,19 +40,38 @@ const (
 // Where the site has stamped tags, only stamped readings lead that came in the order
 // in which the broker keeps messages: a bare number, a message without delivery
 // guarantee or a retained one overtakes what is still kept for us.
+//
+// Of several brokers the one furthest ahead leads, but for as long as another is to
+// deliver what it has kept: since it came back, or while it waits for us. One that is
+// away is waited for a little while only, and then no more until it has caught up: what
+// it has kept is late, unless it is of that while.
 type pace struct {
 	lateness time.Duration
-	quiet    time.Duration // silence after which the clock takes over
+	grace    time.Duration // how long a broker is waited for that is away
 	stamped  bool          // the site has tags with source stamps
-	newest   int64
 	through  int64
-	heard    time.Time // when readings that lead last came, or the session last opened
-	led      time.Time // when readings that lead last came
-	open     bool
-	opened   time.Time // when the session last opened
-	last     []int64   // newest stamp of each tag among the readings that lead; 0: none
+	sources  []source
+	of       []int   // source of each tag
+	last     []int64 // newest stamp of each tag among the readings that lead; 0: none
 	lag      lag
 }
+
+// source is one broker.
+type source struct {
+	tags    int
+	quiet   time.Duration // silence after which the clock takes over
+	newest  int64
+	heard   time.Time // when readings that lead last came, or the session last opened
+	led     time.Time // when readings that lead last came
+	open    bool
+	opened  time.Time // when the session last opened
+	away    time.Time // since when it is not open; zero: it is
+	excused bool      // nobody waits for it
+}
+
+// standing is how it is with a broker: whether it is connected, and whether it keeps
+// messages back for want of an acknowledgement, so that its silence means nothing.
+type standing struct{ connected, heldBack bool }
 
 // reading notes a reading of a tag, stamped at. FromSource says whether the stamp came from the
 // payload, inOrder whether nothing older was overtaken.
@@ -60,35 +83,84 @@ func (p *pace) reading(tag int, at int64, fromSource, inOrder bool, now time.Tim
 	if p.stamped && !inOrder {
 		return
 	}
-	p.newest = max(p.newest, at)
+	s := &p.sources[p.of[tag]]
+	s.newest = max(s.newest, at)
 	p.last[tag] = max(p.last[tag], at)
-	p.heard, p.led = now, now
+	s.heard, s.led = now, now
 }
 
-// advance returns the instant up to which event time has come at the clock's
-// now. HeldBack says that the broker keeps messages back for want of an
-// acknowledgement, so that silence means nothing. In a silence time goes by as it is measured
-// between two looks at the clock, so that setting the clock moves nothing.
-func (p *pace) advance(now time.Time, connected, heldBack bool) int64 {
-	heldBack = heldBack && now.Sub(p.led) < longestWait
-	if connected && !p.open {
-		p.opened = now
+// advance returns the instant up to which event time has come at the clock's now, as it
+// stands with each broker.
+func (p *pace) advance(now time.Time, brokers ...standing) int64 {
+	to, waits := int64(math.MinInt64), int64(math.MaxInt64)
+	for i, b := range brokers[:len(p.sources)] {
+		s := &p.sources[i]
+		if s.tags == 0 {
+			continue
+		}
+		comes := p.comes(i, now, b)
+		to = max(to, comes)
+		s.excuse(now, p.anyOther(i, brokers), p.grace)
+		if !s.excused && (!b.connected || b.heldBack || s.fresh(now)) {
+			waits = min(waits, comes)
+		}
 	}
-	if connected != p.open || !connected || heldBack {
-		p.open, p.heard = connected, now
-	}
-	to := min(p.newest, now.UnixNano())
-	if now.Sub(p.opened) < p.quiet {
-		to = min(to, p.furthestBehind())
-	}
-	if silence := now.Sub(p.heard); p.open && silence >= p.quiet {
-		to = max(to, p.heard.UnixNano()+int64(silence)-p.lag.least())
-	}
-	if p.through <= 0 && p.newest > 0 {
+	to = min(to, waits)
+	if p.through <= 0 && p.anyNewest() {
 		to = max(to, now.Add(-firstReach).UnixNano())
 	}
 	p.through = max(p.through, to-int64(p.lateness))
 	return p.through
+}
+
+// comes returns how far event time would have come by source i alone. In a silence time goes by as it is measured
+// between two looks at the clock, so that setting the clock moves nothing.
+func (p *pace) comes(i int, now time.Time, b standing) int64 {
+	s := &p.sources[i]
+	b.heldBack = b.heldBack && now.Sub(s.led) < longestWait
+	if b.connected && !s.open {
+		s.opened = now
+	}
+	if b.connected != s.open || !b.connected || b.heldBack {
+		s.open, s.heard = b.connected, now
+	}
+	to := min(s.newest, now.UnixNano())
+	if s.fresh(now) {
+		to = min(to, p.furthestBehind(i))
+	}
+	if silence := now.Sub(s.heard); s.open && silence >= s.quiet {
+		to = max(to, s.heard.UnixNano()+int64(silence)-p.lag.least())
+	}
+	return to
+}
+
+// fresh tells whether the source has opened of late, so that what was kept is to come.
+func (s *source) fresh(now time.Time) bool { return now.Sub(s.opened) < s.quiet }
+
+// excuse decides whether to wait for the source; others says that another one is there.
+func (s *source) excuse(now time.Time, others bool, grace time.Duration) {
+	switch {
+	case s.open:
+		s.away = time.Time{}
+		s.excused = s.excused && s.fresh(now)
+	case s.away.IsZero():
+		s.away = now
+	case others && now.Sub(s.away) >= grace:
+		s.excused = true
+	}
+}
+
+func (p *pace) anyOther(i int, brokers []standing) bool {
+	for k, s := range p.sources {
+		if k != i && s.tags > 0 && brokers[k].connected {
+			return true
+		}
+	}
+	return false
+}
+
+func (p *pace) anyNewest() bool {
+	return slices.ContainsFunc(p.sources, func(s source) bool { return s.newest > 0 })
 }
 
 // press moves event time on to at, but not ahead of the clock: no more readings can wait for
@@ -101,7 +173,12 @@ func (p *pace) press(at int64, now time.Time) int64 {
 // shift notes that the clock was set by d: what it showed before is counted anew, as
 // if it had always been so.
 func (p *pace) shift(d time.Duration) {
-	for _, at := range []*time.Time{&p.heard, &p.led, &p.opened, &p.lag.begun} {
+	instants := []*time.Time{&p.lag.begun}
+	for i := range p.sources {
+		s := &p.sources[i]
+		instants = append(instants, &s.heard, &s.led, &s.opened, &s.away)
+	}
+	for _, at := range instants {
 		if !at.IsZero() {
 			*at = at.Add(d)
 		}
@@ -109,21 +186,29 @@ func (p *pace) shift(d time.Duration) {
 	p.lag.shift(int64(d))
 }
 
-// furthestBehind returns the oldest of the tags' newest stamps, of tags that have led.
-func (p *pace) furthestBehind() int64 {
+// furthestBehind returns the oldest of the newest stamps of a source's tags, of those that have led.
+func (p *pace) furthestBehind(source int) int64 {
 	oldest := int64(math.MaxInt64)
-	for _, at := range p.last {
-		if at != 0 {
+	for tag, at := range p.last {
+		if at != 0 && p.of[tag] == source {
 			oldest = min(oldest, at)
 		}
 	}
 	return oldest
 }
 
-// newPace returns the pace of a site with so many tags, the given lateness and commit
-// interval.
-func newPace(tags int, lateness, commit time.Duration, stamped bool) pace {
-	return pace{lateness: lateness, quiet: max(leastQuiet, commit+beyondCommit), stamped: stamped, last: make([]int64, tags)}
+// newPace returns the pace of a site whose tags are of these sources, with the given
+// lateness and commit interval.
+func newPace(of []int, lateness, commit time.Duration, stamped bool) pace {
+	p := pace{lateness: lateness, grace: graceAway, stamped: stamped, of: of, last: make([]int64, len(of))}
+	p.sources = make([]source, slices.Max(of)+1)
+	for i := range p.sources {
+		p.sources[i].quiet = max(leastQuiet, commit+beyondCommit)
+	}
+	for _, i := range of {
+		p.sources[i].tags++
+	}
+	return p
 }
 
 // lag keeps the least lag of stamps behind the clock, ns, over this lagSpan in

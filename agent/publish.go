@@ -13,26 +13,20 @@ import (
 
 // publish shows readers the state after this beat.
 func (a *Agent) publish(r *rhythm) {
-	l, stats := r.books, &r.stats
+	l := r.books
 	s := l.accounts.engine.Snapshot()
 	v := &view.Snapshot{
-		Site:  a.site.Name,
-		At:    s.Through,
-		Slack: int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
-		Lag:   r.pace.lag.least(),
-		Loads: make([]view.Load, len(s.Loads)),
-		Tags:  make([]view.Tag, len(s.Tags)),
-		Broker: view.Broker{
-			Connected: stats.Connected, Topics: stats.Subscribed, Losses: stats.Losses, UnknownTopic: stats.UnknownTopic, Fault: stats.LastError, Waiting: a.session.Waiting(),
-		},
+		Site:    a.site.Name,
+		At:      s.Through,
+		Slack:   int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
+		Lag:     r.pace.lag.least(),
+		Loads:   make([]view.Load, len(s.Loads)),
+		Tags:    make([]view.Tag, len(s.Tags)),
+		Broker:  brokerView(r.intakes[0]),
 		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Damaged: l.store.Damaged(), Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
 	if hasMetrics(a.site) {
-		c := &stats.Sparkplug
-		v.Sparkplug = &view.Sparkplug{
-			Births: c.Births, Deaths: c.Deaths, LateDeaths: c.LateDeaths, Unborn: c.Unborn, Malformed: c.Malformed, Retained: c.Retained,
-			Crowded: c.Crowded, Gaps: c.Gaps, Missed: c.Missed, Reordered: c.Reordered, UnknownAlias: c.UnknownAlias, Requests: c.Requests,
-		}
+		v.Sparkplug = sparkplugView(r.intakes)
 	}
 	if a.clock != nil {
 		v.ClockSteps, _ = a.clock.state()
@@ -40,13 +34,39 @@ func (a *Agent) publish(r *rhythm) {
 	for i := range s.Loads {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
 	}
-	for i, t := range s.Tags {
-		v.Tags[i] = tagView(&a.site.Tags[i], t, stats.Tags[i])
+	for _, f := range r.intakes[1:] {
+		v.Brokers = append(v.Brokers, brokerView(f))
+	}
+	for _, f := range r.intakes {
+		for k, i := range f.tags {
+			v.Tags[i] = tagView(&a.site.Tags[i], s.Tags[i], f.stats.Tags[k])
+		}
 	}
 	a.tellLate(r, v)
 	a.latest.Store(v)
 	if a.o.Beat != nil {
 		a.o.Beat(v)
+	}
+}
+
+// sparkplugView adds up over the brokers.
+func sparkplugView(intakes []*intake) *view.Sparkplug {
+	v := new(view.Sparkplug)
+	for _, f := range intakes {
+		c := &f.stats.Sparkplug
+		v.Births, v.Deaths, v.LateDeaths = v.Births+c.Births, v.Deaths+c.Deaths, v.LateDeaths+c.LateDeaths
+		v.Unborn, v.Malformed, v.Retained = v.Unborn+c.Unborn, v.Malformed+c.Malformed, v.Retained+c.Retained
+		v.Crowded, v.Gaps, v.Missed = v.Crowded+c.Crowded, v.Gaps+c.Gaps, v.Missed+c.Missed
+		v.Reordered, v.UnknownAlias, v.Requests = v.Reordered+c.Reordered, v.UnknownAlias+c.UnknownAlias, v.Requests+c.Requests
+	}
+	return v
+}
+
+func brokerView(f *intake) view.Broker {
+	s := &f.stats
+	return view.Broker{
+		Name: f.name, Connected: s.Connected, Topics: s.Subscribed, Losses: s.Losses, UnknownTopic: s.UnknownTopic, Fault: s.LastError, Waiting: f.session.Waiting(),
+		Published: s.Outbox.Published, Unpublished: s.Outbox.Dropped,
 	}
 }
 

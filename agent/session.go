@@ -10,17 +10,17 @@ import (
 	"heatreeve/ingest"
 )
 
-// newSession prepares the session with the site's broker.
-func newSession(s *site.Site, o Options) (*ingest.Session, error) {
-	options := connectionOf(s.Broker)
-	options.Ahead, options.Log, options.Now = s.Timing.Ahead, o.Log, o.Now
-	options.Subscribe, options.Rebirths, options.Host = s.Broker.Subscribe, s.Broker.Rebirths, s.Broker.HostID
-	if s.Broker.Availability != "" {
-		options.Presence = ingest.Words(s.Broker.Availability, site.Online, site.Offline)
+// newSession prepares the session with one of the site's brokers.
+func newSession(s *site.Site, b site.Broker, tags []ingest.Tag, o Options, reached chan struct{}) (*ingest.Session, error) {
+	options := connectionOf(b)
+	options.Ahead, options.Log, options.Now, options.Reached = s.Timing.Ahead, o.Log, o.Now, reached
+	options.Subscribe, options.Rebirths, options.Host = b.Subscribe, b.Rebirths, b.HostID
+	if b.Availability != "" {
+		options.Presence = ingest.Words(b.Availability, site.Online, site.Offline)
 	}
-	session, err := ingest.New(signalsOf(s), options)
+	session, err := ingest.New(tags, options)
 	if err != nil {
-		return nil, fmt.Errorf("broker session: %w", err)
+		return nil, fmt.Errorf("session with %s: %w", b.Called(), err)
 	}
 	return session, nil
 }

@@ -41,8 +41,8 @@ func TestSlowDisk(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if a.session, err = ingest.New(signalsOf(s), ingest.Options{
-		URL: b.URL(), ClientID: "slow", Ahead: s.Timing.Ahead, Log: a.o.Log, KeepAlive: 2 * time.Second, PingTimeout: 2 * time.Second,
+	if a.intakes[0].session, err = ingest.New(signalsOf(s), ingest.Options{
+		URL: b.URL(), ClientID: "slow", Reached: a.reached, Ahead: s.Timing.Ahead, Log: a.o.Log, KeepAlive: 2 * time.Second, PingTimeout: 2 * time.Second,
 	}); err != nil {
 		t.Fatal(err)
 	}

@@ -159,7 +159,7 @@ func TestMetricsEndAtTheStart(t *testing.T) {
 	defer shut()
 	a := &Agent{site: s, o: Options{Log: slog.New(slog.DiscardHandler)}}
 	before := l.accounts.engine.Snapshot()
-	r := &rhythm{books: l, pace: newPace(len(s.Tags), 0, 0, true)}
+	r := &rhythm{books: l, pace: newPace(brokerOf(s), 0, 0, true)}
 	r.pace.through = before.Through
 	a.endMetrics(r, before)
 	l.beat(nil, now+3600*sec)

@@ -36,17 +36,17 @@ func (s *Session) connected(ctx context.Context, c mqtt.Client) {
 		l.end(err) // the next connection tries again; without effect if this one is lost already
 	}
 	if err == nil {
-		s.greet()
+		s.greet(l)
 		s.decoder.plug.askAll(s.o.Now().UnixNano())
 	}
 }
 
 // greet opens the way for what is to be published, the presence before all else.
-func (s *Session) greet() {
+func (s *Session) greet(l *link) {
 	if s.o.Presence != nil {
 		s.outbox.first(s.online())
 	}
-	s.outbox.connection(true)
+	s.outbox.greet(l)
 }
 
 func (s *Session) subscribe(ctx context.Context, c mqtt.Client) error {

@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"bufio"
+	"encoding/binary"
 	"errors"
 	"fmt"
 	"io"
@@ -12,8 +13,8 @@ import (
 // packet identifier, and a payload one byte longer than is read.
 const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 
-// inflow takes the messages out of a stream of MQTT packets (MQTT 3.1.1, section
-// 2.2), and passes the other packets on. It cuts a PUBLISH beyond the longest, which
+// inflow takes the messages, and what confirms ours, out of a stream of MQTT packets (MQTT
+// 3.1.1, section 2.2), and passes the other packets on. It cuts a PUBLISH beyond the longest, which
 // may announce 256 MiB, so that it is delivered with a payload too large and can be
 // refused and acknowledged; otherwise it would come again at every reconnection.
 // The first packet is passed on whatever it is: the library judges it.
@@ -23,6 +24,7 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
+	confirm func(id uint16) // a message of ours has come to the broker
 	asked   requests
 	most    int         // bytes of a body that are read; 0: maxPacket
 	message delivery    // at hand
@@ -51,6 +53,7 @@ func (f *inflow) Read(p []byte) (int, error) {
 
 const ( // packet types: MQTT 3.1.1, table 2.1
 	publish   = 3
+	puback    = 4
 	subscribe = 8
 	subAck    = 9
 	pingreq   = 12
@@ -69,6 +72,10 @@ func (f *inflow) next() error {
 		return err
 	case first>>4 == publish && f.begun:
 		return f.take(first, length)
+	case first>>4 == puback && f.begun && length == 2 && f.confirm != nil:
+		if ours, err := f.confirmed(); ours || err != nil {
+			return err
+		}
 	case length > f.longest():
 		return fmt.Errorf("packet of type %d with %d bytes; expected at most %d", first>>4, length, f.longest())
 	case first>>4 == subAck && f.begun:
@@ -110,6 +117,25 @@ func (f *inflow) take(first byte, length int) error {
 	}
 	_, err = f.r.Discard(rest)
 	return cutShort(err)
+}
+
+// confirmed takes a PUBACK (MQTT 3.1.1, section 3.4), unless it is of a packet of the
+// library's.
+func (f *inflow) confirmed() (ours bool, err error) {
+	body, err := f.r.Peek(2)
+	if err != nil {
+		return false, cutShort(err)
+	}
+	id := binary.BigEndian.Uint16(body)
+	if id < firstID {
+		return false, nil
+	}
+	f.confirm(id)
+	if f.probed.Swap(false) {
+		f.head = append(f.room[:0], pingresp<<4, 0)
+	}
+	_, err = f.r.Discard(2)
+	return true, err
 }
 
 // cutShort tells an end within a packet from one between two.

@@ -37,7 +37,7 @@ func through(r io.Reader) (passed []byte, messages []delivery, err error) {
 		c := *d
 		c.topic, c.payload = bytes.Clone(d.topic), bytes.Clone(d.payload)
 		messages = append(messages, c)
-	}}
+	}, confirm: func(uint16) {}}
 	passed, err = io.ReadAll(f)
 	return passed, messages, err
 }
@@ -135,6 +135,7 @@ func TestAnswers(t *testing.T) {
 func FuzzInflow(f *testing.F) {
 	f.Add([]byte("\x30\x05\x00\x01a12\xd0\x00"))
 	f.Add([]byte("\x20\x02\x00\x00\x32\x07\x00\x01a\x00\x0712\xd0\x00"))
+	f.Add([]byte("\x20\x02\x00\x00\x40\x02\xff\xff\x40\x03\x00\x01\x02"))
 	f.Add([]byte("\x30\xff\xff\xff\x7f"))
 	f.Fuzz(func(t *testing.T, stream []byte) {
 		out := 0
@@ -142,7 +143,7 @@ func FuzzInflow(f *testing.F) {
 			if out += 2 + len(d.topic) + len(d.payload); len(d.topic)+len(d.payload) > maxPacket {
 				t.Fatalf("a message of %d and %d bytes", len(d.topic), len(d.payload))
 			}
-		}}
+		}, confirm: func(uint16) { out += 4 }}
 		for {
 			var b [3]byte
 			n, err := flow.Read(b[:])

@@ -76,6 +76,18 @@ func (l *link) acknowledge(packets []byte) {
 	}
 }
 
+// publish sends a message.
+func (l *link) publish(packet []byte) error {
+	if l.parting.Load() {
+		return net.ErrClosed
+	}
+	_, err := l.Write(packet)
+	if err != nil {
+		l.end(fmt.Errorf("publish: %w", err))
+	}
+	return err
+}
+
 // end makes the library lose this connection for a reason; a plain Close it
 // would take for its own and not reconnect.
 func (l *link) end(why error) {

@@ -72,6 +72,10 @@ type Options struct {
 	PingTimeout    time.Duration // wait for the probe's answer; 0: DefaultPingTimeout
 	ConnectTimeout time.Duration // for an attempt, and for any write; 0: DefaultConnectTimeout
 
+	// Reached is what [Session.Reached] returns, of one slot; several sessions may
+	// share it. nil: one of its own.
+	Reached chan struct{}
+
 	Log *slog.Logger     // nil: silent
 	Now func() time.Time // the arrival clock; nil: time.Now
 }

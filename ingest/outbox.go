@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"context"
+	"encoding/binary"
 	"sync"
 )
 
@@ -13,19 +14,56 @@ type Message struct {
 	Retain  bool
 }
 
+// packet is the message as it is sent (MQTT 3.1.1, section 3.3), with its identifier
+// where the quality of service is 1.
+func (m *Message) packet(id uint16, again bool) []byte {
+	first := byte(publish<<4) | m.QoS<<1
+	if m.Retain {
+		first |= 1
+	}
+	if again {
+		first |= 8
+	}
+	length := 2 + len(m.Topic) + int(m.QoS)*2 + len(m.Payload)
+	p := appendLength(append(make([]byte, 0, 5+length), first), length)
+	p = append(binary.BigEndian.AppendUint16(p, uint16(len(m.Topic))), m.Topic...)
+	if m.QoS > 0 {
+		p = binary.BigEndian.AppendUint16(p, id)
+	}
+	return append(p, m.Payload...)
+}
+
+// mostInFlight bounds the messages that the broker has not yet confirmed; fewer than
+// the least that a broker allows (common practice, no source: 20).
+const mostInFlight = 16
+
+// firstID is the least identifier of our messages. The library counts from 1 for its
+// subscriptions, and never comes so far while one of ours is in flight.
+const firstID = 1<<16 - mostInFlight
+
+// publisher is the connection that messages are sent on.
+type publisher interface{ publish(packet []byte) error }
+
 // outbox holds messages until they are sent, within a bound. Of retained ones only the
 // newest of a topic waits, and it waits for a connection too. Any other is for the
-// connection that stands, and is dropped with it.
+// connection that stands, and is dropped with it, unless it was sent already. What the
+// broker has not confirmed is sent again on the next connection, before all else and
+// under its old identifier: MQTT 3.1.1, section 4.4.
+//
+// The client library could publish too, but it panics over a message that a connection
+// ended in the middle of.
 type outbox struct {
 	limit int
-	up    func() bool // the library says that the connection stands; nil: always
+	up    func() bool // the library says that a connection stands; nil: always
 
 	mu       sync.Mutex
 	queue    []*Message
 	retained map[string]*Message // of those that wait, by topic
-	open     bool                // a connection stands, and its subscriptions are made
+	opened   publisher           // the newest connection
+	greeted  bool                // its subscriptions are made: it may be sent on
 	closed   bool                // nothing more is taken
-	inFlight int                 // handed to the library and not settled yet
+	inFlight [mostInFlight]*Message
+	again    [mostInFlight]bool // to be sent again
 	counts   OutboxStats
 	changed  chan struct{} // one slot: there may be something to send
 	settled  chan struct{} // one slot: something was
@@ -34,13 +72,9 @@ type outbox struct {
 // OutboxStats counts what was to be published.
 type OutboxStats struct {
 	Published uint64 // handed over: QoS 0 to the connection, QoS 1 to the broker
-	Dropped   uint64 // without a connection, without room, or failed
+	Dropped   uint64 // without a connection, or without room
 	Waiting   int    // now, those in flight included
 }
-
-// mostInFlight bounds the messages that the broker has not yet confirmed; fewer than
-// the least that a broker allows (common practice, no source: 20).
-const mostInFlight = 16
 
 func newOutbox(limit int) *outbox {
 	return &outbox{limit: limit, retained: make(map[string]*Message), changed: make(chan struct{}, 1), settled: make(chan struct{}, 1)}
@@ -71,7 +105,8 @@ func (b *outbox) add(m Message) {
 	tell(b.changed)
 }
 
-// first puts m before all else; it takes the place of what waits on its topic.
+// first puts m, which is retained, before all that waits, in place of what waits on its
+// topic.
 func (b *outbox) first(m Message) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
@@ -87,15 +122,12 @@ func (b *outbox) first(m Message) {
 	tell(b.changed)
 }
 
-// connection notes whether one stands.
-func (b *outbox) connection(stands bool) {
+// open begins a new connection, which is not yet to be sent on; nil: the one before has
+// ended.
+func (b *outbox) open(c publisher) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
-	b.open = stands
-	if stands {
-		tell(b.changed)
-		return
-	}
+	b.opened, b.greeted = c, false
 	kept := b.queue[:0]
 	for _, m := range b.queue {
 		if m.Retain {
@@ -108,25 +140,52 @@ func (b *outbox) connection(stands bool) {
 	tell(b.settled)
 }
 
-// next waits for a message that may be sent; the caller settles it.
-func (b *outbox) next(ctx context.Context) (m Message, ok bool) {
+// greet opens the way on a connection, if it is still the newest.
+func (b *outbox) greet(c publisher) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	if c != b.opened {
+		return
+	}
+	b.greeted = true
+	for i, m := range b.inFlight {
+		b.again[i] = m != nil
+	}
+	tell(b.changed)
+}
+
+// next waits for a packet that may be sent, and says on which connection.
+func (b *outbox) next(ctx context.Context) (packet []byte, on publisher) {
 	for {
-		if m, ok = b.pop(); ok {
-			return m, true
+		if packet, on = b.pop(); packet != nil {
+			return packet, on
 		}
 		select {
 		case <-b.changed:
 		case <-ctx.Done():
-			return Message{}, false
+			return nil, nil
 		}
 	}
 }
 
-func (b *outbox) pop() (Message, bool) {
+func (b *outbox) pop() (packet []byte, on publisher) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
-	if len(b.queue) == 0 || !b.stands() || b.inFlight >= mostInFlight {
-		return Message{}, false
+	if !b.stands() {
+		return nil, nil
+	}
+	free := -1
+	for i, m := range b.inFlight {
+		switch {
+		case m == nil:
+			free = i
+		case b.again[i]:
+			b.again[i] = false
+			return m.packet(firstID+uint16(i), true), b.opened
+		}
+	}
+	if len(b.queue) == 0 || free < 0 {
+		return nil, nil
 	}
 	m := b.queue[0]
 	b.queue[0] = nil
@@ -134,20 +193,24 @@ func (b *outbox) pop() (Message, bool) {
 	if b.retained[m.Topic] == m {
 		delete(b.retained, m.Topic)
 	}
-	b.inFlight++
-	return *m, true
+	if m.QoS > 0 {
+		b.inFlight[free] = m
+	} else {
+		b.counts.Published++
+		tell(b.settled)
+	}
+	return m.packet(firstID+uint16(free), false), b.opened
 }
 
-// settle notes what became of a message.
-func (b *outbox) settle(err error) {
+// confirm notes that the broker has a message.
+func (b *outbox) confirm(id uint16) {
 	b.mu.Lock()
 	defer b.mu.Unlock()
-	b.inFlight--
-	if err == nil {
-		b.counts.Published++
-	} else {
-		b.counts.Dropped++
+	if id < firstID || b.inFlight[id-firstID] == nil {
+		return
 	}
+	b.inFlight[id-firstID] = nil
+	b.counts.Published++
 	tell(b.changed)
 	tell(b.settled)
 }
@@ -177,17 +240,28 @@ func (b *outbox) close(ctx context.Context, last *Message) {
 func (b *outbox) pending() bool {
 	b.mu.Lock()
 	defer b.mu.Unlock()
-	return len(b.queue)+b.inFlight > 0 && b.stands()
+	return b.waiting() > 0 && b.stands()
 }
 
 // stands takes in that a loss may be known here later than in the library. mu is held.
-func (b *outbox) stands() bool { return b.open && (b.up == nil || b.up()) }
+func (b *outbox) stands() bool { return b.greeted && (b.up == nil || b.up()) }
+
+// waiting is how many messages do. mu is held.
+func (b *outbox) waiting() int {
+	n := len(b.queue)
+	for _, m := range b.inFlight {
+		if m != nil {
+			n++
+		}
+	}
+	return n
+}
 
 func (b *outbox) stats() OutboxStats {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	counts := b.counts
-	counts.Waiting = len(b.queue) + b.inFlight
+	counts.Waiting = b.waiting()
 	return counts
 }
 

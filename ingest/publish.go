@@ -2,12 +2,8 @@ package ingest
 
 import (
 	"context"
-	"errors"
 	"fmt"
-	"sync"
 	"time"
-
-	mqtt "github.com/eclipse/paho.mqtt.golang"
 )
 
 // farewell bounds the wait for what is still to be published at a clean end.
@@ -30,23 +26,15 @@ func (s *Session) Publish(m Message) (queued bool, err error) {
 }
 
 // send publishes what is queued until ctx ends.
-func (s *Session) send(ctx context.Context, c mqtt.Client) {
-	var settling sync.WaitGroup
-	defer settling.Wait()
+func (s *Session) send(ctx context.Context) {
 	for {
-		m, ok := s.outbox.next(ctx)
-		if !ok {
+		packet, on := s.outbox.next(ctx)
+		if packet == nil {
 			return
 		}
-		token := c.Publish(m.Topic, m.QoS, m.Retain, m.Payload)
-		settling.Go(func() {
-			select {
-			case <-token.Done():
-				s.outbox.settle(token.Error())
-			case <-ctx.Done():
-				s.outbox.settle(errors.New("not confirmed at the end"))
-			}
-		})
+		if on.publish(packet) != nil {
+			s.outbox.open(nil) // until there is another
+		}
 	}
 }
 

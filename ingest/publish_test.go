@@ -1,6 +1,7 @@
 package ingest
 
 import (
+	"bytes"
 	"fmt"
 	"slices"
 	"sync"
@@ -161,17 +162,57 @@ func TestOutboxIsBounded(t *testing.T) {
 	if got := b.stats(); got.Dropped != 2 || got.Waiting != 3 {
 		t.Errorf("%+v; want 2 dropped, 3 waiting", got)
 	}
-	if _, ok := b.pop(); ok {
+	if packet, _ := b.pop(); packet != nil {
 		t.Error("sent without a connection")
 	}
-	b.connection(true)
-	if m, ok := b.pop(); !ok || m.Topic != "a" || m.Payload[0] != 9 {
+	l := new(link)
+	b.open(l)
+	b.greet(l)
+	p, err := packets.ReadPacket(bytes.NewReader(first(b.pop())))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if m := p.(*packets.PublishPacket); m.TopicName != "a" || m.Payload[0] != 9 || !m.Retain || m.Dup || m.Qos != 0 {
 		t.Errorf("first out is %+v; want the newest of topic a", m)
 	}
 	b.put(Message{Topic: "command"})
-	b.connection(false)
-	if got := b.stats(); got.Dropped != 3 || got.Waiting != 3 {
-		t.Errorf("%+v; want the command dropped with the connection, b and c waiting, a in flight", got)
+	b.open(nil)
+	if got := b.stats(); got.Dropped != 3 || got.Waiting != 2 || got.Published != 1 {
+		t.Errorf("%+v; want the command dropped with the connection, b and c waiting, a published", got)
+	}
+}
+
+func first(packet []byte, _ publisher) []byte { return packet }
+
+// What was not confirmed goes out again on the next connection under its old identifier,
+// marked as a repeat, before what is newer.
+func TestUnconfirmedIsSentAgain(t *testing.T) {
+	b := newOutbox(10)
+	for n := range 2 {
+		l := new(link)
+		b.open(l)
+		b.greet(l)
+		b.greet(new(link)) // of a connection that is gone: without effect
+		b.put(Message{Topic: fmt.Sprint("t", n), Payload: []byte("x"), QoS: 1, Retain: true})
+		var got []string
+		for packet, on := b.pop(); packet != nil; packet, on = b.pop() {
+			p, err := packets.ReadPacket(bytes.NewReader(packet))
+			if err != nil || on != publisher(l) {
+				t.Fatal(err, on)
+			}
+			m := p.(*packets.PublishPacket)
+			got = append(got, fmt.Sprint(m.TopicName, " ", m.MessageID-firstID, " ", m.Dup))
+		}
+		want := [][]string{{"t0 15 false"}, {"t0 15 true", "t1 14 false"}}[n]
+		if !slices.Equal(got, want) {
+			t.Errorf("connection %d: sent %q, want %q", n, got, want)
+		}
+	}
+	for _, id := range []uint16{0, 7, firstID + 15, firstID + 15, firstID + 14, firstID + 3} {
+		b.confirm(id)
+	}
+	if got := b.stats(); got.Published != 2 || got.Waiting != 0 {
+		t.Errorf("%+v; want both published once", got)
 	}
 }
 

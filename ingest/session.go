@@ -106,7 +106,7 @@ func (s *Session) Run(ctx context.Context) error {
 	client.Connect()
 	sending, endSending := context.WithCancel(context.WithoutCancel(ctx))
 	var sender sync.WaitGroup
-	sender.Go(func() { s.send(sending, client) })
+	sender.Go(func() { s.send(sending) })
 	sender.Go(func() { s.sweep(sending, client) })
 	if s.o.Rebirths && s.decoder.plug != nil {
 		sender.Go(func() { s.ask(sending) })
@@ -166,7 +166,7 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 		return nil, *err
 	}
 	s.inbox.reconnect()
-	s.outbox.connection(false)
+	s.outbox.open(nil)
 	s.tally.subscribed(0, nil)
 	conn, err := s.dial(ctx)
 	if err != nil {
@@ -177,6 +177,8 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 	if s.decoder.plug != nil || s.listening != nil {
 		l.in.most = maxPacket - MaxPayload + sparkplug.MaxPayload
 	}
+	l.in.confirm = s.outbox.confirm
+	s.outbox.open(l)
 	s.link.Store(l)
 	return l, nil
 }

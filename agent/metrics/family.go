@@ -94,10 +94,14 @@ func (o *sink) counter(f *family, v float64, labels ...string) {
 }
 
 func (o *sink) add(f *family, kind dto.MetricType, s *sample, values []string) {
-	for k, i := range f.order {
-		s.pairs[k] = o.pair(label{f.labels[i], values[i]})
+	n := 0
+	for _, i := range f.order {
+		if values[i] != "" { // a label that is empty is none
+			s.pairs[n] = o.pair(label{f.labels[i], values[i]})
+			n++
+		}
 	}
-	s.metric.Label = s.pairs[:len(f.order)]
+	s.metric.Label = s.pairs[:n]
 	all := o.gathered[f.index]
 	if all == nil {
 		all = &dto.MetricFamily{Name: &f.name, Help: &f.help, Type: kind.Enum()}

@@ -51,10 +51,10 @@ var (
 	repeated = desc("tag_repeated_readings_total", "Readings delivered more than once and counted once.", "tag")
 
 	eventTime = desc("event_timestamp_seconds", "Unix time up to which everything is accounted for.")
-	connected = desc("broker_connected", "1 while the session with the broker is open.")
-	topics    = desc("broker_subscribed_topics", "Topics that the broker has granted on this connection.")
-	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.")
-	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.")
+	connected = desc("broker_connected", "1 while the session with the broker is open.", "broker")
+	topics    = desc("broker_subscribed_topics", "Topics that the broker has granted on this connection.", "broker")
+	losses    = desc("broker_losses_total", "Connections to the broker lost since the agent started.", "broker")
+	unknown   = desc("broker_unknown_topic_total", "Messages on topics that no tag asks for.", "broker")
 	plugged   = desc("sparkplug_messages_total", "Messages of Sparkplug B since the agent started that are no data of a source that is born, by kind.", "kind")
 	gaps      = desc("sparkplug_gaps_total", "Gaps in the sequences of Sparkplug nodes.")
 	missed    = desc("sparkplug_missed_messages_total", "Messages missing in the sequences of Sparkplug nodes; some may have come later.")
@@ -62,7 +62,9 @@ var (
 	noAlias   = desc("sparkplug_unknown_alias_total", "Sparkplug metrics whose alias no birth has told.")
 	requests  = desc("sparkplug_rebirth_requests_total", "Births that Sparkplug nodes were asked for.")
 	steps     = desc("clock_steps_total", "How often this machine's clock was set since the agent started, by half a second or more.")
-	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.")
+	waiting   = desc("broker_unacknowledged_messages", "Messages received and not yet acknowledged, because not yet on disk.", "broker")
+	published = desc("broker_published_total", "Messages that the agent has published since it started.", "broker")
+	unsent    = desc("broker_unpublished_total", "Messages that the agent was to publish and dropped since it started: without room, or without a connection that they were for.", "broker")
 	bytes     = desc("history_bytes", "Bytes in use within the history's file; retention bounds them.")
 	fileBytes = desc("history_file_bytes", "Size of the history's file, free pages included.")
 	lost      = desc("history_lost_readings_total", "Readings given up because the disk took nothing for long; the registers have them.")
@@ -227,14 +229,12 @@ func (o *sink) agent(s *view.Snapshot) {
 	if s.At != 0 {
 		o.gauge(eventTime, seconds(s.At))
 	}
-	o.gauge(connected, truth(s.Broker.Connected))
-	o.gauge(topics, float64(s.Broker.Topics))
-	o.counter(losses, float64(s.Broker.Losses))
-	o.counter(unknown, float64(s.Broker.UnknownTopic))
+	for _, b := range s.AllBrokers() {
+		o.broker(&b)
+	}
 	if s.Sparkplug != nil {
 		o.sparkplug(s.Sparkplug)
 	}
-	o.gauge(waiting, float64(s.Broker.Waiting))
 	o.counter(steps, float64(s.ClockSteps))
 	o.gauge(bytes, float64(s.History.Bytes))
 	o.gauge(fileBytes, float64(s.History.FileBytes))
@@ -243,6 +243,17 @@ func (o *sink) agent(s *view.Snapshot) {
 	o.counter(failures, float64(s.History.Failures))
 	o.counter(lost, float64(s.History.Lost))
 	o.counter(lostMins, float64(s.History.LostMinutes))
+}
+
+// broker leaves the label out of the series of the main one, which often is the only one.
+func (o *sink) broker(b *view.Broker) {
+	o.gauge(connected, truth(b.Connected), b.Name)
+	o.gauge(topics, float64(b.Topics), b.Name)
+	o.counter(losses, float64(b.Losses), b.Name)
+	o.counter(unknown, float64(b.UnknownTopic), b.Name)
+	o.gauge(waiting, float64(b.Waiting), b.Name)
+	o.counter(published, float64(b.Published), b.Name)
+	o.counter(unsent, float64(b.Unpublished), b.Name)
 }
 
 func truth(b bool) float64 {

@@ -31,7 +31,7 @@ func (r *reader) brokers(o object) {
 		b := r.broker(e.value, e.name)
 		for _, other := range r.site.AllBrokers() {
 			if other.URL == b.URL && other.ClientID == b.ClientID && b.URL != "" {
-				e.fault("is the same broker as %s, under the same client_id: two sessions would throw each other out", other.called())
+				e.fault("is the same broker as %s, under the same client_id: two sessions would throw each other out", other.Called())
 			}
 		}
 		r.site.Brokers = append(r.site.Brokers, b)
@@ -39,7 +39,8 @@ func (r *reader) brokers(o object) {
 	}
 }
 
-func (b *Broker) called() string {
+// Called is what the file calls the broker.
+func (b Broker) Called() string {
 	if b.Name == "" {
 		return "broker"
 	}

@@ -22,7 +22,8 @@ type Snapshot struct {
 	Tags  []Tag
 	// ClockSteps counts how often this machine's clock was set while the agent ran.
 	ClockSteps uint64
-	Broker     Broker
+	Broker     Broker     // the main one
+	Brokers    []Broker   // beside it
 	Sparkplug  *Sparkplug // nil where no tag reads a metric
 	History    History
 }
@@ -68,14 +69,28 @@ type Refusal struct {
 	Count  uint64
 }
 
-// Broker is the MQTT session.
+// AllBrokers are the main broker and those beside it.
+func (s *Snapshot) AllBrokers() []Broker { return append([]Broker{s.Broker}, s.Brokers...) }
+
+// Broker is the MQTT session with one.
 type Broker struct {
+	Name         string // "" of the main one
 	Connected    bool
 	Topics       int    // topics that the broker has granted on this connection
 	Losses       uint64 // connections lost since the agent started
 	UnknownTopic uint64 // messages on topics that no tag asks for
 	Fault        string // why there is no connection; empty when there is
 	Waiting      int    // messages not yet acknowledged
+	Published    uint64 // messages published
+	Unpublished  uint64 // messages to publish that were dropped
+}
+
+// Called is what a message calls the broker.
+func (b *Broker) Called() string {
+	if b.Name == "" {
+		return "broker"
+	}
+	return fmt.Sprintf("broker %q", b.Name)
 }
 
 // Sparkplug counts what came by Sparkplug B since the agent started.

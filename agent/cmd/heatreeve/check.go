@@ -83,21 +83,29 @@ func load(path string) (*site.Site, error) {
 // agent will run on, or an oversight.
 func notes(s *site.Site) []string {
 	var all []string
+	for _, b := range s.AllBrokers() {
+		all = append(all, notesOfBroker(&b)...)
+	}
+	all = append(append(all, idleTags(s)...), unstamped(s)...)
+	return append(all, outlasting(s)...)
+}
+
+func notesOfBroker(b *site.Broker) []string {
+	var all []string
 	for _, f := range [...]struct{ key, path string }{
-		{"ca", s.Broker.CAFile}, {"certificate", s.Broker.CertFile}, {"key", s.Broker.KeyFile}, {"password_file", s.Broker.PasswordFile},
+		{"ca", b.CAFile}, {"certificate", b.CertFile}, {"key", b.KeyFile}, {"password_file", b.PasswordFile},
 	} {
 		if f.path == "" {
 			continue
 		}
 		if _, err := os.Stat(f.path); err != nil {
-			all = append(all, fmt.Sprintf("broker.%s: %v; the agent needs it where it runs", f.key, err))
+			all = append(all, fmt.Sprintf("%s.%s: %v; the agent needs it where it runs", b.Called(), f.key, err))
 		}
 	}
-	if env := s.Broker.PasswordEnv; env != "" && os.Getenv(env) == "" {
-		all = append(all, fmt.Sprintf("broker.password_env: %s is not set here; the agent needs it where it runs", env))
+	if env := b.PasswordEnv; env != "" && os.Getenv(env) == "" {
+		all = append(all, fmt.Sprintf("%s.password_env: %s is not set here; the agent needs it where it runs", b.Called(), env))
 	}
-	all = append(append(all, idleTags(s)...), unstamped(s)...)
-	return append(all, outlasting(s)...)
+	return all
 }
 
 // usualLists is how long the list of samples in a message is taken to be, at least.
