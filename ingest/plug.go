@@ -2,7 +2,6 @@ package ingest
 
 import (
 	"fmt"
-	"slices"
 	"strings"
 	"sync"
 	"time"
@@ -15,6 +14,7 @@ type plug struct {
 	tags    []Tag
 	metrics map[sparkplug.Source]map[string]int // tags by source and name; "" whether it is alive
 	nodes   []sparkplug.Source
+	known   map[sparkplug.Source]bool // those of nodes
 
 	mu       sync.Mutex
 	space    *sparkplug.Space
@@ -33,7 +33,7 @@ type SparkplugStats struct {
 // plugIn takes up a tag that reads a metric.
 func (d *Decoder) plugIn(i int, tag Tag) error {
 	if d.plug == nil {
-		d.plug = &plug{tags: d.tags, metrics: make(map[sparkplug.Source]map[string]int)}
+		d.plug = &plug{tags: d.tags, metrics: make(map[sparkplug.Source]map[string]int), known: make(map[sparkplug.Source]bool)}
 	}
 	return d.plug.add(i, tag.Metric)
 }
@@ -48,7 +48,8 @@ func (p *plug) add(i int, m *Metric) error {
 		return fmt.Errorf("tags %q and %q read the same metric %q of %q", p.tags[other].Name, p.tags[i].Name, m.Name, m.Source)
 	}
 	of[m.Name] = i
-	if node := m.Source.EdgeNode(); !slices.Contains(p.nodes, node) {
+	if node := m.Source.EdgeNode(); !p.known[node] {
+		p.known[node] = true
 		p.nodes = append(p.nodes, node)
 	}
 	return nil
@@ -94,7 +95,7 @@ func (p *plug) decode(topic string, payload []byte, arrival int64, retained bool
 		return out, false
 	}
 	t, ok := sparkplug.ParseTopic(topic)
-	if !ok || !slices.Contains(p.nodes, t.EdgeNode()) {
+	if !ok || !p.known[t.EdgeNode()] {
 		return out, false
 	}
 	p.mu.Lock()

@@ -26,12 +26,18 @@ func NewRequests(random func() float64) *Requests {
 	return &Requests{random: random, due: make(map[Source]int64), asked: make(map[Source]int64)}
 }
 
-// Ask plans a request to a node, if there is none yet.
-func (r *Requests) Ask(node Source, now int64) {
+// Ask plans a request to a node, if there is none yet, for when what is missing has had its
+// time to come.
+func (r *Requests) Ask(node Source, now int64) { r.plan(node, now, patience) }
+
+// AskSoon plans a request to a node of which nothing is known that could still come.
+func (r *Requests) AskSoon(node Source, now int64) { r.plan(node, now, 0) }
+
+func (r *Requests) plan(node Source, now, wait int64) {
 	if _, planned := r.due[node]; planned {
 		return
 	}
-	at := now + r.lengthened(patience)
+	at := now + wait + int64(r.random()*patience)
 	if last, ok := r.asked[node]; ok {
 		at = max(at, last+r.lengthened(interval))
 	}

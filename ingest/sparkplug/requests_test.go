@@ -29,6 +29,18 @@ func TestRequestsAreRare(t *testing.T) {
 	}
 }
 
+func TestRequestsSoon(t *testing.T) {
+	r := NewRequests(func() float64 { return 0.25 })
+	r.AskSoon(nodeN, 0)
+	if early, due := r.Due(second/2-1), r.Due(second/2); len(early) != 0 || len(due) != 1 {
+		t.Errorf("asked %v before half a second and %v then; want the node then", early, due)
+	}
+	r.AskSoon(nodeN, second)
+	if early := r.Due(second/2 + 37*second); len(early) != 0 {
+		t.Errorf("asked %v again within 37.5 s", early)
+	}
+}
+
 func TestSpaceAsksForBirths(t *testing.T) {
 	p := newPlant(t, Options{Random: func() float64 { return 0 }})
 	asked := func() string {

@@ -260,7 +260,7 @@ func (s *Space) AskAll(now int64) {
 		return
 	}
 	for of := range s.nodes {
-		s.requests.Ask(of, now)
+		s.requests.AskSoon(of, now)
 	}
 }
 
