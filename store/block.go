@@ -20,27 +20,22 @@ func (c columns) add(r Reading) {
 
 func (c columns) tags() []uint32 { return slices.Sorted(maps.Keys(c)) }
 
-// blockWriter makes a block of columns, which are added by growing tag.
+// blockWriter makes a block of columns, which are added by growing tag or load.
 type blockWriter struct {
-	name    []byte
-	origin  int64
+	key     []byte // that its checksums are of
 	columns int
 	before  uint32 // the tag before
 	head    []byte
 	body    []byte
 }
 
-func newBlockWriter(s span) *blockWriter { return &blockWriter{name: s.name(), origin: s.earliest} }
+func newBlockWriter(key []byte) *blockWriter { return &blockWriter{key: key} }
 
-func (w *blockWriter) add(tag uint32, c *column) {
-	w.addCoded(tag, uint64(len(c.at)), appendColumn(nil, c, w.origin))
-}
-
-// addCoded adds a column of count readings as appendColumn has written it.
-func (w *blockWriter) addCoded(tag uint32, count uint64, column []byte) {
+// add adds a column of count readings or minutes.
+func (w *blockWriter) add(tag uint32, count uint64, column []byte) {
 	begin := len(w.body)
 	w.body = append(w.body, column...)
-	w.body = binary.LittleEndian.AppendUint32(w.body, checksum(columnKey(w.name, tag), column))
+	w.body = binary.LittleEndian.AppendUint32(w.body, checksum(columnKey(w.key, tag), column))
 	w.head = binary.AppendUvarint(w.head, uint64(tag-w.before))
 	w.head = binary.AppendUvarint(w.head, count)
 	w.head = binary.AppendUvarint(w.head, uint64(len(w.body)-begin))
@@ -51,7 +46,7 @@ func (w *blockWriter) addCoded(tag uint32, count uint64, column []byte) {
 func (w *blockWriter) block() []byte {
 	b := binary.AppendUvarint(nil, uint64(w.columns))
 	b = append(b, w.head...)
-	b = binary.LittleEndian.AppendUint32(b, checksum(headKey(w.name), b))
+	b = binary.LittleEndian.AppendUint32(b, checksum(w.key, b))
 	return append(b, w.body...)
 }
 
@@ -59,8 +54,8 @@ func (w *blockWriter) block() []byte {
 // would be the same.
 func headKey(name []byte) []byte { return name[:nameBytes-4] }
 
-func columnKey(name []byte, tag uint32) []byte {
-	return binary.LittleEndian.AppendUint32(slices.Clone(headKey(name)), tag)
+func columnKey(key []byte, tag uint32) []byte {
+	return binary.LittleEndian.AppendUint32(slices.Clone(key), tag)
 }
 
 // place is where a column lies in its block.
@@ -69,8 +64,8 @@ type place struct {
 	count, length uint64
 }
 
-// places takes the head off the front of a block.
-func (p *parser) places(name []byte) ([]place, error) {
+// places takes the head off the front of a block whose checksums are of key.
+func (p *parser) places(key []byte) ([]place, error) {
 	whole := p.rest
 	all := make([]place, p.count(3))
 	tag := uint64(0)
@@ -83,10 +78,21 @@ func (p *parser) places(name []byte) ([]place, error) {
 	}
 	head := whole[:len(whole)-len(p.rest)]
 	sum := p.take(4)
-	if p.bad || binary.LittleEndian.Uint32(sum) != checksum(headKey(name), head) {
+	if p.bad || binary.LittleEndian.Uint32(sum) != checksum(key, head) {
 		return nil, errRecord
 	}
 	return all, nil
+}
+
+// column takes a column off the front and returns it without its checksum, nil where it is
+// damaged.
+func (p *parser) column(key []byte, at place) []byte {
+	b := p.take(at.length)
+	n := len(b) - 4
+	if p.bad || n < 0 || binary.LittleEndian.Uint32(b[n:]) != checksum(columnKey(key, at.tag), b[:n]) {
+		return nil
+	}
+	return b[:n]
 }
 
 // eachReading calls f with the readings of a tag in the block named name, until f
@@ -97,20 +103,23 @@ func eachReading(name, block []byte, tag uint32, f func(Reading) bool) error {
 		return err
 	}
 	p := parser{rest: block}
-	all, err := p.places(name)
+	all, err := p.places(headKey(name))
 	if err != nil {
 		return err
 	}
 	for _, at := range all {
-		b := p.take(at.length)
-		n := len(b) - 4
-		if at.tag != tag && !p.bad {
+		if at.tag != tag {
+			p.take(at.length)
 			continue
 		}
-		if n < 0 || binary.LittleEndian.Uint32(b[n:]) != checksum(columnKey(name, tag), b[:n]) {
+		b := p.column(headKey(name), at)
+		if b == nil {
 			return errRecord
 		}
-		return parseColumn(b[:n], at.count, s.earliest, tag, f)
+		return parseColumn(b, at.count, s.earliest, tag, f)
+	}
+	if p.bad {
+		return errRecord
 	}
 	return nil
 }

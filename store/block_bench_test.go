@@ -50,10 +50,7 @@ func BenchmarkBlock(b *testing.B) {
 		b.Run(tt.what+"/write", func(b *testing.B) {
 			var block []byte
 			for b.Loop() {
-				w := newBlockWriter(s)
-				for _, tag := range cols.tags() {
-					w.add(tag, cols[tag])
-				}
+				w := packed(cols, s)
 				block = w.block()
 			}
 			xor := 0
@@ -66,10 +63,7 @@ func BenchmarkBlock(b *testing.B) {
 			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/samples/float64(b.N), "ns/sample")
 		})
 		b.Run(tt.what+"/read", func(b *testing.B) {
-			w := newBlockWriter(s)
-			for _, tag := range cols.tags() {
-				w.add(tag, cols[tag])
-			}
+			w := packed(cols, s)
 			name, block := s.name(), w.block()
 			n := 0
 			for b.Loop() {

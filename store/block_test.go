@@ -111,10 +111,7 @@ func TestBlock(t *testing.T) {
 			want[r.Tag] = append(want[r.Tag], r)
 		}
 	}
-	w := newBlockWriter(s)
-	for _, tag := range cols.tags() {
-		w.add(tag, cols[tag])
-	}
+	w := packed(cols, s)
 	name, block := s.name(), w.block()
 	read := func(name, block []byte, tag uint32) (got []Reading, err error) {
 		err = eachReading(name, block, tag, func(r Reading) bool { got = append(got, r); return true })
@@ -193,4 +190,13 @@ func FuzzColumnFloats(f *testing.F) {
 			t.Fatalf("%v, %v\nwant %v", got, err, want)
 		}
 	})
+}
+
+// packed puts columns in a block for what s covers.
+func packed(cols columns, s span) *blockWriter {
+	w := newBlockWriter(headKey(s.name()))
+	for _, tag := range cols.tags() {
+		w.add(tag, uint64(len(cols[tag].at)), appendColumn(nil, cols[tag], s.earliest))
+	}
+	return w
 }

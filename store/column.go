@@ -40,16 +40,14 @@ func (c *column) none(i int) bool { return c.mark(i) != 0 && c.bits[i] == noValu
 // columnMarked is set in a column's first byte where any of its readings has a mark.
 const columnMarked = 1 << 7
 
-// columnHead is what precedes the coded part of a column. All readings are at
-// start plus a whole number of ticks of 10^tick ns; values are those of the numbers
-// base plus a whole number of steps.
+// columnHead is what precedes the coded part of a column. Values are those of the
+// numbers base plus a whole number of steps.
 type columnHead struct {
-	tick  int
-	start int64
-	form  form
-	k     int
-	base  int64
-	step  int64
+	ticks
+	form form
+	k    int
+	base int64
+	step int64
 }
 
 // columnModel is what writer and reader of a column both know of it so far.
@@ -80,10 +78,8 @@ func appendColumn(b []byte, c *column, origin int64) []byte {
 	begin := len(b)
 	w := newBitWriter(b)
 	var m columnModel
-	var lastAt, lastGap, lastWhole int64
+	var lastWhole int64
 	for i := range c.at {
-		at := (c.at[i] - h.start) / unitOf(h.tick)
-		gap := at - lastAt
 		stamped := 0
 		if c.stamped[i] {
 			stamped = 1
@@ -92,8 +88,7 @@ func appendColumn(b []byte, c *column, origin int64) []byte {
 		if !c.none(i) {
 			off = h.off(whole[i], c.bits[i])
 		}
-		m.put(&w, gap-lastGap, stamped, off, c.mark(i), c.marks != nil)
-		lastAt, lastGap = at, gap
+		m.put(&w, h.late(c.at[i]), stamped, off, c.mark(i), c.marks != nil)
 		if m.wasMark != 0 && m.putNone(&w, c.none(i)) {
 			continue
 		}
@@ -174,13 +169,7 @@ func (h *columnHead) off(n int64, b uint64) int64 {
 // head looks through the column for what its readings have in common, and returns the
 // number of each value.
 func (c *column) head() (h columnHead, whole []int64) {
-	h.start = c.at[0]
-	h.tick = maxDigits
-	for _, at := range c.at {
-		for (at-h.start)%unitOf(h.tick) != 0 {
-			h.tick--
-		}
-	}
+	h.ticks = ticksOf(c.at)
 	values := c.values()
 	h.form, h.k = formOf(values)
 	whole = make([]int64, len(c.bits))
@@ -236,9 +225,6 @@ func divisor(a, b int64) int64 {
 	return max(a, -a)
 }
 
-// unitOf is how many ns a tick has.
-func unitOf(tick int) int64 { return int64(tens[tick]) }
-
 // parseColumn yields the count readings of a column until yield returns false. It needs no
 // more memory however many they are. Bytes that no writer made give an error or
 // any readings, never a panic.
@@ -248,7 +234,7 @@ func parseColumn(b []byte, count uint64, origin int64, tag uint32, yield func(Re
 	if p.bad || head[0]&^columnMarked > maxDigits || form(head[1]>>4) >= forms || head[1]&15 > maxDigits {
 		return errRecord
 	}
-	h := columnHead{tick: int(head[0] &^ columnMarked), form: form(head[1] >> 4), k: int(head[1] & 15)}
+	h := columnHead{ticks: ticks{tick: int(head[0] &^ columnMarked)}, form: form(head[1] >> 4), k: int(head[1] & 15)}
 	h.start = origin + p.instant()
 	h.base = unzigzag(p.uvarint())
 	h.step = int64(p.uvarint())
@@ -258,12 +244,10 @@ func parseColumn(b []byte, count uint64, origin int64, tag uint32, yield func(Re
 	marked := head[0]&columnMarked != 0
 	r := newBitReader(p.rest)
 	var m columnModel
-	var at, gap, n int64
+	var n int64
 	for range count {
 		late, off := m.get(&r, marked)
-		gap += late
-		at += gap
-		reading := Reading{Tag: tag, At: h.start + at*unitOf(h.tick), Stamped: m.wasStamped != 0, Mark: uint8(m.wasMark)}
+		reading := Reading{Tag: tag, At: h.next(late), Stamped: m.wasStamped != 0, Mark: uint8(m.wasMark)}
 		if m.wasMark != 0 && m.getNone(&r) {
 			reading.Value = math.NaN()
 		} else {

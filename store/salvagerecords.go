@@ -158,28 +158,17 @@ func (r *refit) lose(first, last uint64, from, to int64) {
 // keptOfBlock counts the readings of a block that can be read, -1 where none can.
 func keptOfBlock(name, block []byte) int64 {
 	p := parser{rest: block}
-	all, err := p.places(name)
+	all, err := p.places(headKey(name))
 	if err != nil || block == nil {
 		return -1
 	}
 	kept := int64(0)
 	for _, at := range all {
-		if columnBytes(&p, name, at) != nil {
+		if p.column(headKey(name), at) != nil {
 			kept += int64(at.count)
 		}
 	}
 	return kept
-}
-
-// columnBytes takes a column off the front and returns it without its checksum, nil where
-// it is damaged.
-func columnBytes(p *parser, name []byte, at place) []byte {
-	b := p.take(at.length)
-	n := len(b) - 4
-	if p.bad || n < 0 || binary.LittleEndian.Uint32(b[n:]) != checksum(columnKey(name, at.tag), b[:n]) {
-		return nil
-	}
-	return b[:n]
 }
 
 func keptOfGroup(s span, b []byte) (kept int64) {
@@ -198,15 +187,15 @@ func (r *refit) block(old span, name, block []byte) error {
 	s := old
 	s.first, s.last = r.next, r.next+old.last-old.first
 	p := parser{rest: block}
-	all, err := p.places(name)
+	all, err := p.places(headKey(name))
 	if err != nil {
 		return err
 	}
 	s.readings = uint32(keptOfBlock(name, block))
-	w := newBlockWriter(s)
+	w := newBlockWriter(headKey(s.name()))
 	for _, at := range all {
-		if b := columnBytes(&p, name, at); b != nil {
-			w.addCoded(at.tag, at.count, b)
+		if b := p.column(headKey(name), at); b != nil {
+			w.add(at.tag, at.count, b)
 			r.tags[at.tag] = true
 		}
 	}

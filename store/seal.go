@@ -196,7 +196,7 @@ func (z *sealer) take(c chunk, beats []Beat) {
 
 // close ends the taking in.
 func (z *sealer) close() {
-	z.tags, z.writer = z.columns.tags(), newBlockWriter(z.span)
+	z.tags, z.writer = z.columns.tags(), newBlockWriter(headKey(z.span.name()))
 	z.wide = len(z.tags)
 }
 
@@ -206,7 +206,7 @@ func (z *sealer) writeColumn() (cost int) {
 		return 1
 	}
 	c := z.columns[z.tags[0]]
-	z.writer.add(z.tags[0], c)
+	z.writer.add(z.tags[0], uint64(len(c.at)), appendColumn(nil, c, z.span.earliest))
 	delete(z.columns, z.tags[0])
 	z.tags = z.tags[1:]
 	return sealColumn + len(c.at)

@@ -165,16 +165,13 @@ func TestBlockDamage(t *testing.T) {
 func FuzzBlock(f *testing.F) {
 	s := newSpan(1)
 	s.add(plant(0, 10, 20))
-	w := newBlockWriter(s)
 	cols := columns{}
 	for _, b := range plant(0, 10, 20) {
 		for _, r := range b.Readings {
 			cols.add(r)
 		}
 	}
-	for _, tag := range cols.tags() {
-		w.add(tag, cols[tag])
-	}
+	w := packed(cols, s)
 	f.Add(s.name(), w.block(), uint32(3))
 	f.Add(s.name(), binary.LittleEndian.AppendUint32([]byte{0}, checksum(headKey(s.name()), []byte{0})), uint32(0))
 	f.Fuzz(func(t *testing.T, name, block []byte, tag uint32) {
