@@ -12,6 +12,7 @@ import (
 func TestReadWhileWriting(t *testing.T) {
 	s := newStore(t, Options{MaxBytes: 150_000})
 	s.groupBytes, s.sealing.enough, s.beatAge = 4000, 3000, 10*second
+	s.minuteSealing.after = 0
 	commit(t, s, numbered(1))
 	stop := make(chan struct{})
 	var readers sync.WaitGroup

@@ -24,6 +24,7 @@ func sample(t *testing.T) (path string, whole []byte, pageSize int) {
 		t.Fatal(err)
 	}
 	s.groupBytes, s.sealing.enough, s.beatAge = 6000, 4000, 200*second
+	s.minuteSealing.after = 0
 	if _, err := s.IDs("tag", []string{"TT-1", "TT-2", "FT-1"}); err != nil {
 		t.Fatal(err)
 	}
@@ -239,7 +240,7 @@ func TestUnknownVersion(t *testing.T) {
 		return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version+1))
 	})
 	_, err := Open(path, Options{})
-	if !errors.Is(err, ErrVersion) || !strings.Contains(err.Error(), "version 3") {
+	if !errors.Is(err, ErrVersion) || !strings.Contains(err.Error(), "version 4") {
 		t.Errorf("version %d: %v", Version+1, err)
 	}
 }

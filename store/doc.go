@@ -5,7 +5,7 @@
 // so that a process killed at any moment finds on its return either all of a batch or
 // nothing of it.
 //
-// # Layout, version 2
+// # Layout, version 3
 //
 // The file holds these buckets. Integers in keys are big-endian, so that keys
 // sort as numbers do; a signed time has its sign bit flipped for the same
@@ -15,7 +15,7 @@
 // of the value before the checksum. The keys "all" and "checkpoint" are there from the
 // beginning.
 //
-//	meta       "version"  uint32: 2
+//	meta       "version"  uint32: 3
 //	           "created"  int64: Unix nanoseconds at creation
 //	           "hours"    int64 built, int64 trimmed; CRC
 //	names      "all" -> for each name: uint32 id, uvarint length and bytes of its
@@ -25,7 +25,8 @@
 //	           of its first record; in it "r" -> records
 //	sealed     a bucket for each block, by its name; in it "r" -> the block
 //	tail0..2   "r" -> the last records of the open group, cut in pieces
-//	minutes    int64 start, uint32 load / 8 -> minute records, CRC
+//	minutes    int64 start, uint32 load / 8 -> minute records, CRC; in 00 a bucket for
+//	           each block of minutes, by int64 span, uint32 load / 8; in it "r" -> the block
 //	hours      int64 start, uint32 load / 8 -> hour records, CRC
 //	events     int64 at, uint64 number -> int64 until (0: it lasts), then for kind, subject
 //	           and text: uvarint length, bytes; CRC
@@ -37,8 +38,9 @@
 //	           "sites", a bucket, once there is a site file: int64 from -> its SHA-256,
 //	           which it is in force from then on, CRC; SHA-256 -> the text by RFC 1951, CRC
 //
-// names, minutes, hours, events, state and sites also hold an empty bucket named 00: a bucket that holds
-// another is never laid into the root's page, whose room the tails need.
+// names, minutes, hours, events, state and sites also hold a bucket named 00, but for that of
+// minutes an empty one: a bucket that holds another is never laid into the root's page, whose
+// room the tails need.
 //
 // The sequence of the bucket events is the greatest number that an event has borne.
 //
@@ -99,7 +101,7 @@
 //	columns, each with a CRC
 //
 // where the checksum's key is the name without its own CRC, and for a column the uint32
-// tag after that. A column begins with
+// tag after that. A column of readings begins with
 //
 //	1 byte tick, and 128 where any reading has a mark that is not 0, 1 byte
 //	16·form + digits, instant start less the name's earliest,
@@ -147,6 +149,29 @@
 // the 12 floats of the first two, all float64 and with no forerunner for Duty. Such
 // a minute stays as it is until one of the same key is replaced.
 //
+// Minutes are sealed once their hours are built and they are three hours old: those under
+// all keys of one uint32 that lie in one span, of six hours of UTC, become a block. Each block
+// is written in a transaction; the keys go in some that follow the last of the span. A key that
+// is there stands before what a block has for that start, so that nothing is there twice. Late
+// minutes of a sealed span come under a key again, with all that the block has for it, until the
+// block is made anew. A key that cannot be read stays, and where a block cannot, so do all
+// keys beside it.
+//
+// A block of minutes is made as one of readings is, with loads in the place of tags and its
+// own key as that of the checksums. A column begins with
+//
+//	1 byte tick, instant start less that of the span
+//
+// and goes on in the same arithmetic code: of each minute by how much the difference of two
+// times differs from the one before; then 8 bits, how many floats of a minute are told, and of
+// each in the order of [figures] 2 bits: 0 for all are 0, 1 for all are the float64 whose bits
+// follow, and 2 for 1 bit full, 1 bit before, 2 bits like, and a number for each minute. Most
+// floats are told by the bits of the float32, or the part, that a minute keeps of them; with
+// full, or if they are told in full anyway, by those of the float64. These are made numbers of
+// the same order. Told is a number less that of what it is like, which is another float of the
+// same minute (0: nothing), and with before, less that difference in the minute before. Which
+// is shortest, the writer finds out for each column.
+//
 // Hours lie in the same way. Each is
 //
 //	1 byte shape, as of a minute but with bit 3 clear; uvarint minutes
@@ -178,7 +203,15 @@
 // decimals that people write can be told again to the digit; the bytes below are noise that
 // no coding shortens. A minute of a water
 // circuit takes 42 bytes so, and 58 with the parts of its uncertainty, where it took 81
-// in full without them. Heat and times are told in full, for they are added up.
+// in full without them. Heat and times are told in full, for they are added up. In the pages
+// it takes 69 bytes with those of its key, and 31 once it is sealed, of which 7 are the noise of
+// its heat.
+//
+// Blocks of minutes lie within the bucket of the minutes because one more bucket in the root's
+// page would take room from the tails. Six hours are long enough for a column to learn what it
+// is like: of an hour's minutes each takes 2 bytes more, of a day's half a byte less. Keys go in
+// order of time, whatever their loads, so that whole pages become free; to remove those of one
+// block at a time would write each page again for every eight loads.
 //
 // There are no records of days. A day is one of the site's clock, of 23 to 25 hours and
 // beginning at any quarter of a UTC hour, which the history does not know; and a year of a
@@ -195,10 +228,12 @@
 // pages, after the one that looks for damage; where it is, it is looked at as well.
 //
 // Open brings a file of version 1, which has neither hours, events nor sealed, and 4 float64 in each
-// register, to version 2: it moves the
+// register, to version 3: it moves the
 // tails to recent, which makes room in the root's page, and adds what is missing,
-// with built and trimmed at the least int64. The commits that follow build the hours
-// and seal the groups, a few each. Other versions are refused. Change any of the above, and the version must
+// with built and trimmed at the least int64. A file of version 2, which has no blocks of
+// minutes, needs nothing but the new number, by which programs that know no such blocks refuse
+// it. The commits that follow build the hours
+// and seal groups and minutes, a few each. Other versions are refused. Change any of the above, and the version must
 // change with it.
 //
 // # What is damaged

@@ -12,7 +12,7 @@ const (
 	// mostEvents bounds how many events Trim leaves: of an agent that works, some hundred
 	// years'.
 	mostEvents = 100_000
-	// eventsAView bounds how long a read transaction lasts, as minutesAView does.
+	// eventsAView bounds how long a read transaction lasts, as hoursAView does.
 	eventsAView = 1024
 )
 

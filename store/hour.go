@@ -112,10 +112,17 @@ func present(a, wa, b, wb float64) float64 {
 
 // hourOf returns the start of the hour that holds t. The hour that begins before
 // the least int64 is taken to begin there.
-func hourOf(t int64) int64 {
-	into := t % hourNanos
+func hourOf(t int64) int64 { return floorTo(t, hourNanos) }
+
+// hourAfter returns the start of the next hour, or the greatest int64 where
+// there is none.
+func hourAfter(start int64) int64 { return nextOf(start, hourNanos) }
+
+// floorTo returns the greatest multiple of step up to t, or the least int64.
+func floorTo(t, step int64) int64 {
+	into := t % step
 	if into < 0 {
-		into += hourNanos
+		into += step
 	}
 	if t < math.MinInt64+into {
 		return math.MinInt64
@@ -123,11 +130,10 @@ func hourOf(t int64) int64 {
 	return t - into
 }
 
-// hourAfter returns the start of the next hour, or the greatest int64 where
-// there is none.
-func hourAfter(start int64) int64 {
-	if start > math.MaxInt64-hourNanos {
+// nextOf returns the multiple of step after the one that start is in.
+func nextOf(start, step int64) int64 {
+	if start > math.MaxInt64-step {
 		return math.MaxInt64
 	}
-	return hourOf(start + hourNanos)
+	return floorTo(start+step, step)
 }

@@ -2,6 +2,7 @@ package store
 
 import (
 	"bytes"
+	"cmp"
 	"encoding/binary"
 	"iter"
 	"maps"
@@ -37,8 +38,8 @@ func readHourMark(tx *bolt.Tx) (m hourMark, ok bool) {
 		return hourMark{int64(binary.LittleEndian.Uint64(v)), int64(binary.LittleEndian.Uint64(v[8:]))}, true
 	}
 	m = unbuilt
-	if k, _ := tx.Bucket(bucketMinutes).Cursor().Seek(keyFirstMinute); len(k) == 12 {
-		m.trimmed = hourAfter(hourOf(keyTime(k)))
+	if first, ok := firstMinute(tx); ok {
+		m.trimmed = hourAfter(hourOf(first))
 	}
 	return m, false
 }
@@ -72,8 +73,11 @@ func (s *Store) putHours(tx *bolt.Tx, changed []Minute) error {
 	}
 	for _, start := range slices.Sorted(maps.Keys(late)) {
 		s.widen(tx, start, late[start])
-		w := s.newHourWalk(tx, start)
-		if err := s.putHour(tx, mark, w.hour(func(load uint32) bool { return late[start][load] }), w.torn); err != nil {
+		w := s.newMinuteWalk(tx, start)
+		if w.end || w.start() != start {
+			continue
+		}
+		if err := s.buildHours(w, mark, hourAfter(start), func(load uint32) bool { return late[start][load] }); err != nil {
 			return err
 		}
 	}
@@ -97,111 +101,63 @@ func (s *Store) widen(tx *bolt.Tx, start int64, loads map[uint32]bool) {
 
 // advanceHours builds hours that are over, from some keys or a few more.
 func (s *Store) advanceHours(tx *bolt.Tx, mark hourMark, keys int) error {
-	last, _ := tx.Bucket(bucketMinutes).Cursor().Last()
-	if len(last) != 12 {
+	end, ok := lastHour(tx)
+	if !ok || end <= mark.built {
 		return nil
 	}
-	end := hourOf(keyTime(last))
-	if end <= mark.built {
-		return nil
-	}
-	w := s.newHourWalk(tx, mark.built)
-	for w.keys < keys && w.key != nil && w.start() < end {
-		if err := s.putHour(tx, mark, w.hour(anyLoad), w.torn); err != nil {
+	w := s.newMinuteWalk(tx, mark.built)
+	for w.passed < keys && !w.end && w.start() < end {
+		if err := s.buildHours(w, mark, end, anyLoad); err != nil {
 			return err
 		}
 	}
 	mark.built = end
-	if w.key != nil {
-		mark.built = w.start()
+	if !w.end {
+		mark.built = min(end, w.start())
 	}
 	return putHourMark(tx, mark)
 }
 
-// hourWalk goes through minutes an hour at a time.
-type hourWalk struct {
-	store      *Store // hears of what cannot be read
-	cursor     *bolt.Cursor
-	key, value []byte // the first of the hour that comes; nil at the end
-	keys       int    // that have been passed
-	minutes    []Minute
-	torn       map[uint32]bool // blocks of loads of which some in the last hour cannot be read
+// hourPlace tells hours apart.
+type hourPlace struct {
+	start int64
+	load  uint32
 }
 
-func (s *Store) newHourWalk(tx *bolt.Tx, from int64) *hourWalk {
-	w := &hourWalk{store: s, cursor: tx.Bucket(bucketMinutes).Cursor()}
-	w.key, w.value = w.cursor.Seek(minuteKey(from, 0))
-	return w
-}
-
-func (w *hourWalk) start() int64 { return hourOf(keyTime(w.key)) }
-
-// hour adds up the next hour that has minutes, of the loads that are wanted, and
-// returns them by load. Minutes that cannot be read are not in it: the store tells of
-// them once the hour is written.
-func (w *hourWalk) hour(want func(load uint32) bool) []Hour {
-	if w.key == nil {
-		return nil
-	}
-	start := w.start()
-	sums := map[uint32]*hourSum{}
-	w.torn = map[uint32]bool{}
-	for w.key != nil && w.start() == start {
-		for i := range w.read(want) {
-			m := &w.minutes[i]
-			if sums[m.Load] == nil {
-				sums[m.Load] = &hourSum{}
-			}
-			sums[m.Load].add(m)
+// buildHours adds up the hours of the next stretch of w, of the loads that are wanted.
+// Minutes that cannot be read are not in them: the store tells of these once the hours are
+// written.
+func (s *Store) buildHours(w *minuteWalk, mark hourMark, until int64, want func(load uint32) bool) error {
+	sums := map[hourPlace]*hourSum{}
+	torn := map[uint32]bool{} // blocks of loads
+	w.torn = nil
+	w.stretch(until, want, func(m *Minute) {
+		at := hourPlace{hourOf(m.Start), m.Load}
+		if sums[at] == nil {
+			sums[at] = &hourSum{}
 		}
-		w.key, w.value = w.cursor.Next()
-		w.keys++
-	}
+		sums[at].add(m)
+	}, func(load uint32) { torn[load/loadsAKey] = true })
+	s.torn = append(s.torn, w.torn...)
 	hours := make([]Hour, 0, len(sums))
-	for _, load := range slices.Sorted(maps.Keys(sums)) {
-		hours = append(hours, sums[load].hour())
+	for _, at := range slices.SortedFunc(maps.Keys(sums), func(a, b hourPlace) int {
+		return cmp.Or(cmp.Compare(a.start, b.start), cmp.Compare(a.load, b.load))
+	}) {
+		hours = append(hours, sums[at].hour())
 	}
-	return hours
+	return s.putHour(w.tx, mark, hours, torn)
 }
 
-// read parses the minutes of the key that w is at, where any of their loads is wanted.
-func (w *hourWalk) read(want func(load uint32) bool) []Minute {
-	w.minutes = w.minutes[:0]
-	if !wantsAny(w.key, want) {
-		return nil
-	}
-	var err error
-	if w.minutes, err = parseMinutes(w.minutes, w.key, w.value, want); err != nil {
-		if len(w.key) == 12 {
-			w.torn[binary.BigEndian.Uint32(w.key[8:])] = true
-		}
-		w.store.torn = append(w.store.torn, w.store.damage("minutes", w.key, err))
-	}
-	return w.minutes
-}
-
-// wantsAny tells whether any load is wanted that the key of minutes may hold.
-func wantsAny(key []byte, want func(load uint32) bool) bool {
-	if len(key) != 12 {
-		return true
-	}
-	first := binary.BigEndian.Uint32(key[8:]) * loadsAKey
-	for load := first; load-first < loadsAKey; load++ {
-		if want(load) {
-			return true
-		}
-	}
-	return false
-}
-
-// putHour writes hours that have one start, sorted by load. Those that cannot be read
+// putHour writes hours, sorted by start and load. Those that cannot be read
 // under a key that is written make place and are counted.
 func (s *Store) putHour(tx *bolt.Tx, mark hourMark, hours []Hour, torn map[uint32]bool) error {
 	bucket := tx.Bucket(bucketHours)
 	bucket.FillPercent = appendFill
 	for len(hours) > 0 {
 		key := minuteKey(hours[0].Start, hours[0].Load)
-		n := sort.Search(len(hours), func(i int) bool { return hours[i].Load/loadsAKey > hours[0].Load/loadsAKey })
+		n := sort.Search(len(hours), func(i int) bool {
+			return hours[i].Start > hours[0].Start || hours[i].Load/loadsAKey > hours[0].Load/loadsAKey
+		})
 		var all []Hour
 		if old := bucket.Get(key); old != nil {
 			var err error
@@ -285,7 +241,7 @@ func (s *Store) hoursFrom(found []Hour, from, to int64, load uint32) (all []Hour
 func (s *Store) builtFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, faults []error, next int64) {
 	c := loadCursor{tx.Bucket(bucketHours).Cursor(), load / loadsAKey}
 	k, v := c.seek(from)
-	for range minutesAView {
+	for range hoursAView {
 		if k == nil || keyTime(k) >= to {
 			return all, faults, to
 		}
@@ -303,23 +259,16 @@ func (s *Store) builtFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) 
 
 // unbuiltFrom adds up the next hour from its minutes.
 func (s *Store) unbuiltFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) (_ []Hour, faults []error, next int64) {
-	c := loadCursor{tx.Bucket(bucketMinutes).Cursor(), load / loadsAKey}
-	k, v := c.seek(from)
-	if k == nil || hourOf(keyTime(k)) >= to {
+	at, ok := nextMinute(tx, from, load)
+	start := hourOf(at)
+	if !ok || start >= to {
 		return all, nil, to
 	}
-	start := hourOf(keyTime(k))
+	want, read := s.ofLoad(load)
+	minutes, faults := s.spanMinutes(tx, nil, load, at, lastBefore(hourAfter(start)), want, read)
 	var sum hourSum
-	var minutes []Minute
-	for k != nil && hourOf(keyTime(k)) == start {
-		var err error
-		if minutes, err = parseMinutes(minutes[:0], k, v, func(l uint32) bool { return l == load }); err != nil {
-			faults = append(faults, s.damage("minutes", k, err))
-		}
-		for i := range minutes {
-			sum.add(&minutes[i])
-		}
-		k, v = c.next()
+	for i := range minutes {
+		sum.add(&minutes[i])
 	}
 	if sum.Minutes > 0 {
 		all = append(all, sum.hour())

@@ -102,6 +102,7 @@ func TestHourOnce(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
+			s.minuteSealing.after = 0
 			for range rapid.IntRange(0, 12).Draw(t, "commits") {
 				var b Batch
 				for _, n := range rapid.SliceOfN(rapid.Int64Range(-200, 200), 0, 20).Draw(t, "minutes") {
@@ -234,9 +235,12 @@ func TestHoursLast(t *testing.T) {
 }
 
 // layout1 unpacks a file that was written when the layout had version 1.
-func layout1(t *testing.T) string {
+func layout1(t *testing.T) string { return unpacked(t, "layout1.db.gz") }
+
+// unpacked is a file of testdata.
+func unpacked(t *testing.T, name string) string {
 	t.Helper()
-	f, err := os.Open("testdata/layout1.db.gz")
+	f, err := os.Open(filepath.Join("testdata", name))
 	if err != nil {
 		t.Fatal(err)
 	}

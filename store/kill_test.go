@@ -119,6 +119,7 @@ func commitForEver(path string) error {
 		return err
 	}
 	s.groupBytes, s.sealing.enough, s.beatAge = 4000, 2000, 10*second
+	s.minuteSealing.after = 0
 	n, err := lastNumber(s)
 	if err != nil {
 		return err

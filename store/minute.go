@@ -154,8 +154,11 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 	if shape&shapeRare != 0 {
 		rare = p.floats(minuteRare)
 	}
+	var which uint64
+	var parts []byte
 	if shape&shapeParts != 0 {
-		p.parts(m)
+		which = p.which()
+		parts = p.take(2 * uint64(bits.OnesCount64(which)))
 	}
 	if shape&shapeDoubt != 0 {
 		doubt = p.floats(1)
@@ -176,16 +179,8 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 		doubtField := m.uncertain()
 		doubt.read(doubtField[:])
 	}
-}
-
-func (p *parser) parts(m *Minute) {
-	which := p.which()
-	codes := p.take(2 * uint64(bits.OnesCount64(which)))
-	if p.bad {
-		return
-	}
 	for i, f := range m.shares().of(which) {
-		*f.float = partValue(binary.LittleEndian.Uint16(codes[2*i:]))
+		*f.float = partValue(binary.LittleEndian.Uint16(parts[2*i:]))
 	}
 	m.Random *= m.Random
 }

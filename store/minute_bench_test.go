@@ -1,9 +1,11 @@
 package store
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"testing"
+	"time"
 )
 
 // measured makes a minute from 60 figures of a water circuit whose flow and temperatures
@@ -38,7 +40,8 @@ func measured(rng *rand.Rand, load uint32, start int64) Minute {
 }
 
 // BenchmarkMinute tells what a day of minutes and the hours of 10 loads take: B/minute and
-// B/hour are the records alone, B/page what the pages of the minutes take of each.
+// B/hour are the records alone, B/page what the pages of the minutes take of each, and B/sealed
+// the same once they are sealed.
 // B/first-layout is what a record of the first layout takes, which tells no parts.
 func BenchmarkMinute(b *testing.B) {
 	for _, tt := range []struct {
@@ -61,7 +64,7 @@ func BenchmarkMinute(b *testing.B) {
 }
 
 func benchmarkMinutes(b *testing.B, trim func(*Minute)) {
-	s := newStore(b, Options{})
+	s := neverSeals(b, Options{})
 	rng := rand.New(rand.NewPCG(9, 10))
 	first, now, hours := 0, 0, 0
 	const start, minutes, loads = 20_000 * day, 1440, 10
@@ -86,8 +89,62 @@ func benchmarkMinutes(b *testing.B, trim func(*Minute)) {
 	b.ReportMetric(float64(first)/minutes/loads, "B/first-layout")
 	b.ReportMetric(float64(now)/minutes/loads, "B/minute")
 	b.ReportMetric(float64(bucketBytes(b, s, bucketMinutes))/minutes/loads, "B/page")
+	sealAllMinutes(b, s)
+	b.ReportMetric(float64(bucketBytes(b, s, bucketMinutes))/minutes/loads, "B/sealed")
 	b.ReportMetric(float64(hours)/loads, "B/hour")
 	if n := len(drain(b, s.Minutes(3, start, start+day))); n != minutes {
 		b.Fatalf("%d minutes", n)
+	}
+}
+
+// sealAllMinutes seals what can be sealed, and returns how long the longest step took.
+func sealAllMinutes(b *testing.B, s *Store) (worst time.Duration) {
+	b.Helper()
+	s.minuteSealing.after = 0
+	commit(b, s, Batch{Minutes: []Minute{{Start: 30_000 * day}}}) // all of them are old beside it
+	for {
+		begun := time.Now()
+		cost, err := s.minuteStep()
+		worst = max(worst, time.Since(begun))
+		if err != nil {
+			b.Fatal(err)
+		}
+		if cost == 0 {
+			return worst
+		}
+	}
+}
+
+// BenchmarkSealMinutes seals a span of minutes: ns/minute and ms/worst are the time that it
+// takes, of a minute and of the longest step, which one commit has to bear; and B/written is what
+// bbolt writes for a minute by that.
+func BenchmarkSealMinutes(b *testing.B) {
+	for _, loads := range []uint32{10, 1000} {
+		b.Run(fmt.Sprintf("%d-loads", loads), func(b *testing.B) {
+			for b.Loop() {
+				b.StopTimer()
+				s := neverSeals(b, Options{MaxBytes: 1 << 30})
+				rng := rand.New(rand.NewPCG(9, 10))
+				for minute := range int64(sealedSpan / (60 * second)) {
+					var batch Batch
+					for load := range loads {
+						batch.Minutes = append(batch.Minutes, measured(rng, load, 80_000*sealedSpan+minute*60*second))
+					}
+					commit(b, s, batch)
+				}
+				n := float64(loads) * float64(sealedSpan/(60*second))
+				before := s.db.Stats().TxStats
+				b.StartTimer()
+				begun := time.Now()
+				worst := sealAllMinutes(b, s)
+				took := time.Since(begun)
+				b.StopTimer()
+				after := s.db.Stats().TxStats
+				b.ReportMetric(float64(took.Nanoseconds())/n, "ns/minute")
+				b.ReportMetric(float64(worst.Microseconds())/1e3, "ms/worst")
+				b.ReportMetric(float64(after.GetPageAlloc()-before.GetPageAlloc())/n, "B/written")
+				b.StartTimer()
+			}
+		})
 	}
 }

@@ -89,6 +89,7 @@ func TestModel(t *testing.T) {
 				t.Fatal(err)
 			}
 			s.groupBytes, s.sealing.enough, s.beatAge = group, enough, 1
+			s.minuteSealing.after = 0
 			for _, b := range rapid.SliceOfN(anyBatch, 0, 15).Draw(t, "batches") {
 				if err := s.Commit(b); err != nil {
 					t.Fatal(err)

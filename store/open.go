@@ -18,11 +18,12 @@ import (
 	berrors "go.etcd.io/bbolt/errors"
 )
 
-// Version is the layout that this package writes. Open brings a file of the layout
-// before it, firstVersion, up to it.
+// Version is the layout that this package writes. Open brings a file of a layout
+// before it, from firstVersion on, up to it.
 const (
-	Version      = 2
-	firstVersion = 1
+	Version       = 3
+	secondVersion = 2 // has hours, events and sealed readings
+	firstVersion  = 1
 )
 
 var (
@@ -71,7 +72,7 @@ func open(path string, o Options) (*Store, error) {
 		return nil, err
 	}
 	s := &Store{path: path, maxAge: o.MaxAge, maxHourAge: o.MaxHourAge, beatAge: o.BeatAge, maxBytes: o.MaxBytes, mostEvents: mostEvents,
-		groupBytes: defaultGroup, log: o.Log, newest: math.MinInt64, sealing: newSealer(1)}
+		groupBytes: defaultGroup, log: o.Log, newest: math.MinInt64, sealing: newSealer(1), minuteSealing: newMinuteSealer()}
 	if s.maxBytes <= 0 {
 		s.maxBytes = defaultBytes
 	}
@@ -239,7 +240,7 @@ func buckets(version uint32) [][]byte {
 	for i := range tails {
 		all = append(all, bucketTail(i))
 	}
-	if version > firstVersion {
+	if version >= secondVersion {
 		all = append(all, bucketHours, bucketSealed, bucketEvents)
 	}
 	return all

@@ -1,6 +1,9 @@
 package store
 
-import "math"
+import (
+	"math"
+	"math/bits"
+)
 
 // A part of an uncertainty takes 16 bits: the sign, 6 bits e and 9 bits m stand for
 // (1 + m/512)·2^(e-partBias), which tells it to a part in a thousand. What is less than
@@ -65,7 +68,8 @@ func (s shares) present() (which uint64) {
 }
 
 // of lists those that bits say are there.
-func (s shares) of(which uint64) (all []told) {
+func (s shares) of(which uint64) []told {
+	all := make([]told, 0, bits.OnesCount64(which))
 	if which&1 != 0 {
 		all = append(all, told{float: s.random})
 	}

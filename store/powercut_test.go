@@ -114,6 +114,7 @@ func watched(t *testing.T, trim bool) (l *diskLog) {
 	path := filepath.Join(t.TempDir(), "history.db")
 	s := openStore(t, path, Options{})
 	s.groupBytes, s.sealing.enough, s.beatAge = 3000, 2000, 20*second
+	s.minuteSealing.after = 0
 	commit(t, s, numbered(1))
 	l = watch(t, s.db)
 	for n := 2; n <= 700; n++ {

@@ -12,11 +12,11 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// headersAView and minutesAView bound how long a read transaction lasts: pages
+// headersAView and hoursAView bound how long a read transaction lasts: pages
 // that it sees cannot be used again before it ends.
 const (
 	headersAView = 4096
-	minutesAView = 1024
+	hoursAView   = 1024
 )
 
 func (s *Store) damage(what string, key []byte, err error) error {
@@ -369,24 +369,18 @@ func (s *Store) Minutes(load uint32, from, to int64) iter.Seq2[Minute, error] {
 	}
 }
 
-// minutesFrom adds some minutes to found. next is where to go on, to or later at the
-// end.
+// minutesFrom adds some minutes to found, of no more than a span. next is where to go on, to
+// or later at the end.
 func (s *Store) minutesFrom(found []Minute, from, to int64, load uint32) (all []Minute, faults []error, next int64) {
 	all, next = found, to
 	err := s.view(func(tx *bolt.Tx) error {
-		c := loadCursor{tx.Bucket(bucketMinutes).Cursor(), load / loadsAKey}
-		k, v := c.seek(from)
-		for n := 0; k != nil && keyTime(k) < to; n++ {
-			if n == minutesAView {
-				next = keyTime(k)
-				return nil
-			}
-			var err error
-			if all, err = parseMinutes(all, k, v, func(l uint32) bool { return l == load }); err != nil {
-				faults = append(faults, s.damage("minutes", k, err))
-			}
-			k, v = c.next()
+		at, ok := nextMinute(tx, from, load)
+		if !ok || at >= to {
+			return nil
 		}
+		next = min(to, spanAfter(spanOf(at)))
+		want, read := s.ofLoad(load)
+		all, faults = s.spanMinutes(tx, all, load, at, next-1, want, read)
 		return nil
 	})
 	if err != nil {

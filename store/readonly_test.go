@@ -152,7 +152,7 @@ func TestReadOnlyRefusals(t *testing.T) {
 		{damaged, ErrDamaged, ""},
 		{stranger, ErrVersion, "so it is not a history"},
 		{empty, ErrEmptied, "read a backup"},
-		{layout1(t), nil, "it has layout version 1, and version 2 is read; start the agent once on it"},
+		{layout1(t), nil, "it has layout version 1, and version 3 is read; start the agent once on it"},
 	} {
 		before := heldIn(t, tt.path)
 		s, err := OpenReadOnly(tt.path)

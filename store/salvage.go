@@ -120,8 +120,11 @@ type salvage struct {
 	unsure  bool                   // groups of the newest state may be missing without a trace
 	damaged map[string]bool        // keys of minutes, hours, events and site files that were met damaged; in front m, h, e or s
 	names   []byte                 // of no known bucket
+	blocks  []keyed                // of minutes
 	batch   []keyed
 	bytes   int
+	earlier bool // what is met is not of the newest state
+	sealed  sealedStarts
 }
 
 // salvagedTree is what one state of the file holds beside minutes, hours, events and groups.
@@ -136,10 +139,12 @@ type keyed struct{ bucket, key, value []byte }
 
 func (z *salvage) all() error {
 	for _, m := range z.raw.metas {
-		if err := z.tree(m.root); err != nil {
+		if err := errors.Join(z.tree(m.root), z.flush()); err != nil {
 			return err
 		}
+		z.earlier = true
 	}
+	z.earlier = true
 	version := z.value("meta", keyVersion, func(v []byte) bool { return len(v) == 4 })
 	if v := versionOf(version); version != nil && (v < firstVersion || v > Version) {
 		return fmt.Errorf("%w: it is %s, this program reads versions %d to %d", ErrVersion, versionText(version), firstVersion, Version)
@@ -181,6 +186,8 @@ func (z *salvage) tree(root uint64) (err error) {
 			case "minutes", "hours", "events":
 				if !e.bucket {
 					keep(z.keyed(name, e))
+				} else if name == "minutes" {
+					w.bucket(e.value, func(e element) { keep(z.minuteBlock(e, true)) })
 				}
 			case "journal", "sealed":
 				z.group(len(z.trees)-1, e)
@@ -227,6 +234,9 @@ func (z *salvage) strays() error {
 		for _, e := range all {
 			if e.bucket {
 				z.group(z.rank(e), e)
+				if err := z.minuteBlock(e, false); err != nil {
+					return err
+				}
 				continue
 			}
 			z.strayNames(e)
@@ -329,7 +339,12 @@ func (z *salvage) keyed(bucket string, e element) (err error) {
 		return nil
 	}
 	z.batch = append(z.batch, keyed{[]byte(bucket), append([]byte{}, e.key...), append([]byte{}, e.value...)})
-	if z.bytes += len(e.value); len(z.batch) < keysAStep && z.bytes < compactSlice {
+	return z.took(len(e.value))
+}
+
+// took writes what was taken once that is much.
+func (z *salvage) took(n int) error {
+	if z.bytes += n; len(z.batch) < keysAStep && z.bytes < compactSlice {
 		return nil
 	}
 	return z.flush()
@@ -337,10 +352,22 @@ func (z *salvage) keyed(bucket string, e element) (err error) {
 
 // flush writes what was taken, but for what is there already.
 func (z *salvage) flush() error {
-	batch := z.batch
-	z.batch, z.bytes = nil, 0
+	blocks, batch := z.blocks, z.batch
+	z.blocks, z.batch, z.bytes = nil, nil, 0
+	z.sealed = sealedStarts{}
 	return z.db.Update(func(tx *bolt.Tx) (err error) {
+		for _, k := range blocks {
+			if err := putBlock(tx, k); err != nil {
+				return err
+			}
+		}
 		for _, k := range batch {
+			if z.earlier && string(k.bucket) == string(bucketMinutes) {
+				if err := z.fill(tx, k); err != nil {
+					return err
+				}
+				continue
+			}
 			b := tx.Bucket(k.bucket)
 			if b == nil {
 				if b, err = makeSites(tx); err != nil {
@@ -393,21 +420,8 @@ func (z *salvage) count() error {
 		}
 		lost.add(1, at, at)
 	}
+	s := &Store{path: z.db.Path(), db: z.db, log: discard()}
 	return z.db.Update(func(tx *bolt.Tx) error {
-		minutes, hours := tx.Bucket(bucketMinutes).Cursor(), tx.Bucket(bucketHours).Cursor()
-		there := map[uint32]uint32{}
-		mk, mv := minutes.Seek(keyFirstMinute)
-		take := func(until int64, all bool) {
-			for clear(there); mk != nil && (all || keyTime(mk) < until); mk, mv = minutes.Next() {
-				found, _ := parseMinutes(nil, mk, mv, anyLoad)
-				r.Minutes.add(int64(len(found)), keyTime(mk), keyTime(mk))
-				for _, m := range found {
-					if m.Start >= until-hourNanos {
-						there[m.Load]++
-					}
-				}
-			}
-		}
 		if err := z.countEvents(tx); err != nil {
 			return err
 		}
@@ -415,22 +429,20 @@ func (z *salvage) count() error {
 			r.Sites.add(1, f.From, f.From)
 		}
 		mark := z.hourMark(tx)
-		taken := int64(math.MinInt64)
+		minutes := newCountMinutes(s, tx, r)
+		hours := tx.Bucket(bucketHours).Cursor()
 		for k, v := hours.Seek(keyFirstMinute); k != nil; k, v = hours.Next() {
 			at := keyTime(k)
-			if at != taken || r.Hours.Count == 0 {
-				take(hourAfter(at), false)
-				taken = at
-			}
+			minutes.until(at, false)
 			found, _ := parseHours(nil, k, v, anyLoad)
 			r.Hours.add(int64(len(found)), at, at)
 			for _, h := range found {
-				if n := there[h.Load]; at >= mark.trimmed && h.Minutes > n {
+				if n := minutes.there[hourPlace{at, h.Load}]; at >= mark.trimmed && h.Minutes > n {
 					r.LostMinutes.add(int64(h.Minutes-n), at, at)
 				}
 			}
 		}
-		take(math.MaxInt64, true)
+		minutes.until(math.MaxInt64, true)
 		return putHourMark(tx, hourMark{math.MinInt64, mark.trimmed})
 	})
 }

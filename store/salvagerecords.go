@@ -30,8 +30,8 @@ func (z *salvage) hourMark(tx *bolt.Tx) hourMark {
 	})
 	if v == nil {
 		m, _ := readHourMark(tx)
-		if k, _ := tx.Bucket(bucketMinutes).Cursor().Seek(keyFirstMinute); len(k) == 12 {
-			m.trimmed = hourAfter(hourOf(keyTime(k)))
+		if first, ok := firstMinute(tx); ok {
+			m.trimmed = hourAfter(hourOf(first))
 		}
 		return m
 	}
@@ -367,6 +367,14 @@ func (z *salvage) reserved(r *refit) []byte {
 		all, _ := parseMinutes(nil, k, v, anyLoad)
 		for _, m := range all {
 			greatest = max(greatest, m.Load)
+		}
+	}
+	blocks := minuteBlocks(r.tx)
+	c = blocks.Cursor()
+	for k, _ := c.First(); k != nil; k, _ = c.Next() {
+		all, _, _ := minutePlaces(k, blocks.Bucket(k).Get(keyRecords)) // as it was written
+		for _, at := range all {
+			greatest = max(greatest, at.tag)
 		}
 	}
 	c = r.tx.Bucket(bucketHours).Cursor()

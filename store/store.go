@@ -66,8 +66,8 @@ type Options struct {
 	// Commit fails, and IsFull tells so. 0 stands for MaxBytes and an eighth and
 	// 16 MiB more, and on a 32-bit machine for no more than 400 MB.
 	MaxFile int64
-	// Log hears of a compaction or a new layout at Open, of readings that cannot be
-	// sealed, and of minutes that cannot be read for their hour; nil is silence.
+	// Log hears of a compaction or a new layout at Open, of readings and minutes that cannot
+	// be sealed, and of minutes that cannot be read for their hour; nil is silence.
 	Log *slog.Logger
 }
 
@@ -87,6 +87,7 @@ type Store struct {
 
 	used    atomic.Int64 // bytes of the pages in use
 	damaged atomic.Int64
+	lately  atomic.Pointer[lastColumn]
 
 	mu      sync.Mutex // held while writing; guards what follows
 	open    *openGroup // nil: to be read from the file before the next record
@@ -95,6 +96,8 @@ type Store struct {
 	torn    []error // what the transaction at hand cannot read and goes on without
 	full    bool    // the last commit, or naming, found no room
 	closed  bool
+
+	minuteSealing minuteSealer
 }
 
 // Commit writes b in one transaction, which is on the disk when Commit returns
@@ -124,6 +127,7 @@ func (s *Store) Commit(b Batch) error {
 		readings += len(beat.Readings)
 	}
 	s.seal(readings)
+	s.sealMinutes(b.Minutes)
 	return nil
 }
 
@@ -190,9 +194,9 @@ func (s *Store) update(f func(*bolt.Tx) error) error {
 }
 
 // Damaged counts, since Open, the records that could not be read when something was to
-// be made of them: keys of minutes (up to eight loads each) that are missing in their hour or
-// were replaced, keys of hours that were replaced, groups that cannot be sealed, and what
-// Trim removed unread. The log tells which. What only a reader meets, it is told itself.
+// be made of them: keys and blocks of minutes (up to eight loads each) that are missing in
+// their hour, were replaced or cannot be sealed, keys of hours that were replaced, groups that
+// cannot be sealed, and what Trim removed unread. The log tells which. What only a reader meets, it is told itself.
 func (s *Store) Damaged() int64 { return s.damaged.Load() }
 
 func (s *Store) view(f func(*bolt.Tx) error) error {

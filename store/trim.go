@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"time"
 
 	bolt "go.etcd.io/bbolt"
@@ -30,7 +31,7 @@ const (
 	reliefBytes = 256 << 10
 )
 
-// Trimmed says what retention has removed. Damaged counts the groups and the keys
+// Trimmed says what retention has removed. Damaged counts the groups, the blocks and the keys
 // of minutes, hours, events and site files that could not be read, so that it is not known what was in
 // them.
 type Trimmed struct{ Readings, Minutes, Hours, Events, Sites, Damaged int64 }
@@ -43,7 +44,8 @@ type Trimmed struct{ Readings, Minutes, Hours, Events, Sites, Damaged int64 }
 // as old as its beginning. Beats after the last checkpoint are never removed, for a restart
 // needs them, nor the minutes of the newest hour, nor any register. Readings go a
 // group or block at a time and the last of these stays: 48 KiB of them, or a
-// day's, may be kept longer than MaxAge. After a Commit, or IDs, that found no room, Trim makes
+// day's, may be kept longer than MaxAge; and so may six hours of minutes, whose blocks go
+// as a whole. After a Commit, or IDs, that found no room, Trim makes
 // some, however much MaxBytes allows.
 func (s *Store) Trim(now int64) (Trimmed, error) {
 	s.mu.Lock()
@@ -151,9 +153,11 @@ func (s *Store) doomed(tx *bolt.Tx, mark uint64, old, excess int64) (all []group
 	return all
 }
 
-// trimMinutes removes minutes from the front, of hours that have been built.
+// trimMinutes removes minutes from the front, of hours that have been built. Sealed ones come
+// first: a block must go before the keys that stand before it.
 func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bool, err error) {
-	if keys, _ := s.oldest(tx.Bucket(bucketMinutes), old, excess, math.MaxInt64); len(keys) == 0 {
+	keys, _ := s.oldest(tx.Bucket(bucketMinutes), old, excess, math.MaxInt64)
+	if len(keys) == 0 && len(s.oldBlocks(tx, old, excess, math.MaxInt64)) == 0 {
 		return false, nil
 	}
 	mark, err := s.hourMark(tx)
@@ -164,7 +168,18 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 		return false, err
 	}
 	mark, _ = readHourMark(tx)
-	keys, more := s.oldest(tx.Bucket(bucketMinutes), old, excess, mark.built)
+	if blocks := s.oldBlocks(tx, old, excess, mark.built); len(blocks) > 0 {
+		mark.trimmed = max(mark.trimmed, spanAfter(keyTime(blocks[len(blocks)-1])))
+		if err := s.removeBlocks(minuteBlocks(tx), blocks, t); err != nil {
+			return false, err
+		}
+		return true, putHourMark(tx, mark)
+	}
+	keys, more = s.oldest(tx.Bucket(bucketMinutes), old, excess, mark.built)
+	keys = slices.DeleteFunc(keys, func(k []byte) bool {
+		_, block := minuteBlock(tx, keyTime(k), firstLoad(k))
+		return block != nil
+	})
 	if len(keys) == 0 {
 		return false, nil
 	}
@@ -180,6 +195,41 @@ func (s *Store) trimMinutes(tx *bolt.Tx, old, excess int64, t *Trimmed) (more bo
 	}
 	mark.trimmed = max(mark.trimmed, hourAfter(hourOf(keyTime(keys[len(keys)-1]))))
 	return more, putHourMark(tx, mark)
+}
+
+// oldBlocks returns the blocks of minutes at the front of which all is before old, or that
+// make up the excess, and in any case before end.
+func (s *Store) oldBlocks(tx *bolt.Tx, old, excess, end int64) (keys [][]byte) {
+	page := int64(s.db.Info().PageSize)
+	blocks := minuteBlocks(tx)
+	c := blocks.Cursor()
+	for k, _ := c.First(); len(k) == 12 && len(keys) < groupsATrim; k, _ = c.Next() {
+		if after := spanAfter(keyTime(k)); after > end || after > old && excess <= 0 {
+			break
+		}
+		excess -= (int64(len(blocks.Bucket(k).Get(keyRecords))) + page) / page * page
+		keys = append(keys, bytes.Clone(k))
+	}
+	return keys
+}
+
+func (s *Store) removeBlocks(blocks *bolt.Bucket, keys [][]byte, t *Trimmed) error {
+	for _, k := range keys {
+		all, _, err := minutePlaces(k, blocks.Bucket(k).Get(keyRecords))
+		if err != nil {
+			t.Damaged++
+		}
+		for _, at := range all {
+			t.Minutes += int64(at.count)
+		}
+		if err := blocks.DeleteBucket(k); err != nil {
+			return err
+		}
+		if s.minuteSealing.span == keyTime(k) {
+			s.minuteSealing.busy = false // its keys must not follow
+		}
+	}
+	return nil
 }
 
 // trimHours removes hours from the front.

@@ -7,15 +7,26 @@ import (
 	bolt "go.etcd.io/bbolt"
 )
 
-// upgrade brings a file of the layout before to the present one. It adds what is
-// new and takes nothing away; minutes stay as they are, and their hours are built by the
-// commits that follow, and told from the minutes until then.
+// upgrade brings a file of a layout before to the present one. It adds what is
+// new and takes nothing away; minutes stay as they are, and are sealed by the commits that
+// follow. So are their hours built, and told from the minutes until then.
 func (s *Store) upgrade() error {
 	version, err := s.version()
 	if err != nil || version == Version {
 		return err
 	}
-	if err := s.update(upgradeTo); err != nil {
+	err = s.update(func(tx *bolt.Tx) error {
+		if version < secondVersion {
+			if err := upgradeToSecond(tx); err != nil {
+				return err
+			}
+		}
+		if _, err := tx.Bucket(bucketMinutes).CreateBucketIfNotExists(keyPlaceholder); err != nil {
+			return err
+		}
+		return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version))
+	})
+	if err != nil {
 		return fmt.Errorf("bring it from layout version %d to %d: %w", version, Version, err)
 	}
 	s.log.Info("history has a new layout", "file", s.path, "before", version, "now", Version)
@@ -30,7 +41,7 @@ func (s *Store) version() (version uint32, err error) {
 	return version, err
 }
 
-func upgradeTo(tx *bolt.Tx) error {
+func upgradeToSecond(tx *bolt.Tx) error {
 	if _, err := tx.CreateBucket(bucketSealed); err != nil {
 		return err
 	}
@@ -57,10 +68,7 @@ func upgradeTo(tx *bolt.Tx) error {
 	if err := putHourMark(tx, unbuilt); err != nil {
 		return err
 	}
-	if err := upgradeRegisters(tx.Bucket(bucketRegisters)); err != nil {
-		return err
-	}
-	return tx.Bucket(bucketMeta).Put(keyVersion, binary.LittleEndian.AppendUint32(nil, Version))
+	return upgradeRegisters(tx.Bucket(bucketRegisters))
 }
 
 func upgradeRegisters(b *bolt.Bucket) error {
