@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"testing"
@@ -104,6 +105,7 @@ type yearWriter struct {
 	tags, loads []uint32
 	end         int64 // Unix
 	walk        *drift
+	rng         *rand.Rand
 }
 
 func openYear(b *testing.B, path string) *yearWriter {
@@ -112,7 +114,7 @@ func openYear(b *testing.B, path string) *yearWriter {
 	if err != nil {
 		b.Fatal(err)
 	}
-	w := &yearWriter{db: db, end: time.Now().Unix() / 3600 * 3600, walk: newDrift()}
+	w := &yearWriter{db: db, end: time.Now().Unix() / 3600 * 3600, walk: newDrift(), rng: rand.New(rand.NewPCG(5, 7))}
 	var tags, loads []string
 	for i := range 10 {
 		loads = append(loads, fmt.Sprintf("load-%d", i))
@@ -149,15 +151,30 @@ func (w *yearWriter) commit(b *testing.B, hour, seconds int) {
 	for k, load := range w.loads {
 		for minute := range int64(60) {
 			v := 640e3 + 1e3*w.walk.values[k] + 10*float64(minute)
-			batch.Minutes = append(batch.Minutes, store.Minute{
-				Load: load, Start: (from + 60*minute) * int64(time.Second), Measured: 60,
-				Given: 60 * v, Duty: v, DutyMin: v * 0.99, DutyMax: v * 1.01, DutyUncertainty: v / 99, Flow: v / 167472,
-				Inlet: 353.15 + v/1e7, Outlet: 323.15 + v/1e7, Pressure: 5.1e5 + v/1e3, Random: v * v / 1e4,
-			})
+			batch.Minutes = append(batch.Minutes, w.minute(load, (from+60*minute)*int64(time.Second), v))
 		}
 		batch.Registers = append(batch.Registers, store.Register{Load: load, Given: 640e3 * 3600 * float64(hour+1), Measured: 3600 * float64(hour+1)})
 	}
 	commit(b, w.db, batch)
+}
+
+// minute is one of a water circuit about a duty of v. Each of its figures wanders by itself, so
+// that none can be told from the others, and the heat has digits to the last.
+func (w *yearWriter) minute(load uint32, start int64, v float64) store.Minute {
+	near := func(x, share float64) float64 { return x * (1 + share*w.rng.NormFloat64()) }
+	v = near(v, 2e-3)
+	flow, inlet := near(v/125_600, 1e-3), near(353.15, 1e-4)
+	random := near(60*2e-3*v, 1e-2)
+	m := store.Minute{
+		Load: load, Start: start, Measured: 60, Given: 60 * v, Duty: v,
+		DutyMin: v - math.Abs(near(1e-2*v, 0.3)), DutyMax: v + math.Abs(near(1e-2*v, 0.3)), DutyUncertainty: near(v/99, 1e-3),
+		Flow: flow, Inlet: inlet, Outlet: near(inlet-v/flow/4190, 1e-5), Pressure: near(5.1e5, 1e-4), Random: random * random,
+	}
+	perKelvin := 60 * 4190 * flow
+	for part, x := range map[int]float64{0: 0.005 * m.Given, 1: 0.2 * perKelvin, 2: -0.2 * perKelvin, 8: 0.05 * perKelvin, 9: 0.001 * m.Given, 10: 0.0003 * m.Given} {
+		m.Systematic[part] = x
+	}
+	return m
 }
 
 // beats writes seconds of readings that no checkpoint stands for.
