@@ -36,12 +36,12 @@ func neverSeals(t testing.TB, o Options) *Store {
 	return s
 }
 
-// sameRecords compares all minutes and hours of two stores, to the bit.
+// sameRecords compares all minutes and hours of two stores.
 func sameRecords(t *testing.T, got, want *Store, loads ...uint32) {
 	t.Helper()
 	for _, load := range loads {
 		a, b := drain(t, got.Minutes(load, math.MinInt64, math.MaxInt64)), drain(t, want.Minutes(load, math.MinInt64, math.MaxInt64))
-		if !sameMinutes(a, b) {
+		if !slices.Equal(a, b) {
 			t.Errorf("load %d has %d minutes, want %d", load, len(a), len(b))
 		}
 		g, w := drain(t, got.Hours(load, math.MinInt64, math.MaxInt64)), drain(t, want.Hours(load, math.MinInt64, math.MaxInt64))
