@@ -28,7 +28,7 @@ func Prove(ctx context.Context, s *site.Site, length time.Duration, progress fun
 	}
 	o := connectionOf(s.Broker)
 	o.ClientID, o.Transient = "heatreeve-check-"+rand.Text()[:8], true
-	o.Ahead, o.Log = s.Timing.Ahead, slog.New(slog.DiscardHandler)
+	o.Ahead, o.Log, o.Rebirths = s.Timing.Ahead, slog.New(slog.DiscardHandler), s.Broker.Rebirths
 	session, err := ingest.New(signalsOf(s), o)
 	if err != nil {
 		return nil, fmt.Errorf("broker session: %w", err)

@@ -3,6 +3,7 @@ package proving
 import (
 	"fmt"
 	"slices"
+	"strings"
 	"time"
 
 	"heatreeve/agent/site"
@@ -74,6 +75,9 @@ func (t *Tag) Doubtful() bool { return t.Has && t.Mark.Quality() != quality.Good
 func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
 	declared, heard := &t.site.Tags[i], &t.tags[i]
 	told := Tag{Name: declared.Name, Topic: declared.Topic, Live: heard.live, Kept: heard.kept, Stamped: declared.Time != ""}
+	if m := declared.Metric; m != nil {
+		told.Topic, told.Stamped = strings.TrimSpace(m.Source()+" "+m.Name), m.Name != ""
+	}
 	if heard.live > 1 {
 		told.Every = float64(heard.last-heard.first) / float64(heard.live-1) / 1e9
 	}
@@ -119,6 +123,8 @@ func (t *tagTrial) findings(declared *site.Tag, told *Tag, seconds float64, refu
 	case len(refused) > 0:
 	case told.Kept > 0 && !silent:
 		add(Fault, "only a message that the broker had kept; nothing live in %.0f s", seconds)
+	case declared.Metric != nil:
+		add(Fault, "nothing by Sparkplug from %q in %.0f s; metrics sent by alias are known from the birth of their node on, so let it be born while this listens, or let commands: rebirth of the broker ask for it", told.Topic, seconds)
 	case silent:
 		add(Note, "nothing live in %.0f s; it reports on change, so listen for longer, or make it change", seconds)
 	default:

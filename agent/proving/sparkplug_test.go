@@ -1,0 +1,21 @@
+package proving_test
+
+import (
+	"strings"
+	"testing"
+
+	"heatreeve/agent/proving"
+)
+
+// A metric that is sent by alias is unknown until a birth; the finding says what to do.
+func TestSilentMetric(t *testing.T) {
+	s, trial := bench(t, strings.Replace(file, "topic: a/TT-1, unit: °C, value: /v, time: /ts", "sparkplug: plant/gw/loop, metric: T/in, unit: °C", 1))
+	r := trial.Tell(60, make([][]proving.Refused, len(s.Tags)))
+	tag := r.Tags[0]
+	if tag.Topic != "plant/gw/loop T/in" || !tag.Stamped || len(tag.Findings) != 1 {
+		t.Fatalf("%+v", tag)
+	}
+	if f := tag.Findings[0]; f.Level != proving.Fault || !strings.Contains(f.Text, `nothing by Sparkplug from "plant/gw/loop T/in" in 60 s`) || !strings.Contains(f.Text, "commands: rebirth") {
+		t.Errorf("%+v", f)
+	}
+}
