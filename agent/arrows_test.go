@@ -42,7 +42,7 @@ var arrows = map[string][]string{
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
 	"agent/metrics": {
-		"agent/view", "agent/loads", "agent/design",
+		"agent/view", "agent/loads", "agent/design", "ingest/quality",
 	},
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",

@@ -109,6 +109,9 @@ const crowded = "crowded"
 func tagView(tag *site.Tag, t loads.TagState, s ingest.TagStats) view.Tag {
 	v := view.Tag{Name: tag.Name, MaxAge: int64(tag.Holds()), Newest: max(t.Newest, s.NewestAt), Accepted: s.Accepted - t.Crowded, Late: t.Late, Repeated: t.Repeated}
 	v.Counter, v.Resets, v.Leaps = tag.Counter != nil, t.Reset, t.Implausible
+	for _, d := range t.Doubted {
+		v.Doubted = append(v.Doubted, view.Doubt{Reason: d.Mark.String(), Count: d.Readings})
+	}
 	v.Refused = noRefusals
 	if t.Crowded > 0 || s.Refused != (ingest.TagStats{}).Refused {
 		v.Refused = refusals(&s, t.Crowded)

@@ -15,6 +15,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
 
+	"heatreeve/agent/loads"
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/view"
 )
@@ -63,12 +64,20 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 			if figure.Measured() {
 				duty = fmt.Sprintf("%.1f ± %.1f kW", figure.Duty/1e3, CoverageFactor*figure.Uncertainty/1e3)
 			}
-			line := fmt.Sprintf("%-32s %-10s %20s  %s", s.Loads[i].Name, verdict, duty, cmp.Or(figure.Reason, figure.Note))
+			line := fmt.Sprintf("%-32s %-10s %20s  %s", s.Loads[i].Name, verdict, duty, remark(&figure))
 			fmt.Fprintln(w, strings.TrimRight(line, " "))
 		}
 		fmt.Fprint(w, "\n±: twice the standard uncertainty\n\n")
 	}
 	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/explain  the working of a figure as JSON, such as /explain?load=NAME\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
+}
+
+// remark is why there is no figure, or what to bear in mind with it.
+func remark(f *loads.Figure) string {
+	if d := f.Doubt(); d != "" && f.Note != "" {
+		return d + "; " + f.Note
+	}
+	return cmp.Or(f.Reason, f.Doubt(), f.Note)
 }
 
 // answer turns a list of what is wrong into 200 or 503, a line a fault.

@@ -8,6 +8,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/ingest/quality"
 )
 
 // The page at / says why a load is blind, and what to bear in mind with a duty for as
@@ -17,12 +18,15 @@ func TestFrontPage(t *testing.T) {
 		{Name: "hall", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "TT-1 is old"}},
 		{Name: "cooler", Verdict: design.Holding, Until: clock.UnixNano(), Figure: loads.Figure{Duty: 40.8e3, Uncertainty: 350, Remark: loads.Remark{Latent: true, Note: "sensible part only: coil"}}},
 	}}
+	doubted := s.Loads[1]
+	doubted.Name, doubted.Figure.Mark, doubted.Figure.By = "chiller", quality.Stuck, "TT-2"
+	s.Loads = append(s.Loads, doubted)
 	page := func(now int64) string {
 		var b bytes.Buffer
 		front(&b, s, wall(now))
 		return strings.Join(strings.Fields(b.String()), " ")
 	}
-	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 ± 0.7 kW sensible part only: coil"} {
+	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 ± 0.7 kW sensible part only: coil", `chiller holding 40.8 ± 0.7 kW tag "TT-2" is uncertain: stuck; sensible part only: coil`} {
 		if got := page(clock.UnixNano()); !strings.Contains(got, want) {
 			t.Errorf("page %q, want %q in it", got, want)
 		}

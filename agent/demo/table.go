@@ -50,13 +50,18 @@ func tableLines(s *view.Snapshot, o TableOptions) []string {
 
 // remarks say why a load is blind, or what to bear in mind with its duty.
 func remarks(l *view.Load, width int) []string {
-	switch f := &l.Figure; {
-	case !f.Measured():
+	f := &l.Figure
+	if !f.Measured() {
 		return []string{fit(fmt.Sprintf("%s is blind: %s", l.Name, f.Reason), width)}
-	case f.Note != "":
-		return wrap(l.Name+", "+f.Note, width)
 	}
-	return nil
+	var lines []string
+	if d := f.Doubt(); d != "" {
+		lines = append(lines, fit(l.Name+": "+d, width))
+	}
+	if f.Note != "" {
+		lines = append(lines, wrap(l.Name+", "+f.Note, width)...)
+	}
+	return lines
 }
 
 func heading(s *view.Snapshot, zone *time.Location) string {

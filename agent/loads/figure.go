@@ -95,6 +95,15 @@ func (f *Figure) Quality() quality.Quality {
 	return f.Mark.Quality()
 }
 
+// Doubt says of a measured figure which tag has the mark that it has; it is empty where
+// there is none.
+func (f *Figure) Doubt() string {
+	if !f.Measured() || f.Mark == quality.None {
+		return ""
+	}
+	return fmt.Sprintf("tag %q is %v: %v", f.By, f.Mark.Quality(), f.Mark)
+}
+
 // uncertain reports whether the time of a measured figure is uncertain.
 func (f *Figure) uncertain() bool { return f.Mark.Quality() == quality.Uncertain }
 

@@ -64,6 +64,9 @@ func TestUncertainTimeIsTold(t *testing.T) {
 	if f.Mark != quality.OffSpec || f.By != "TO" || f.Quality() != quality.Uncertain {
 		t.Errorf("mark %v by %q, quality %v", f.Mark, f.By, f.Quality())
 	}
+	if got, want := f.Doubt(), `tag "TO" is uncertain: out-of-specification`; got != want {
+		t.Errorf("doubt %q, want %q", got, want)
+	}
 	closed := e.Advance(Beat{marked(outlet, 30, 330, quality.None), through(60)}, nil)
 	l := accounted(t, e, 60, 0, 0, 0)
 	near(t, "given", l.Given, 160e3*60, 1e-6)

@@ -16,6 +16,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/ingest/quality"
 )
 
 // windowNames are the label values of [loads.Windows].
@@ -30,6 +31,8 @@ var (
 	heat        = desc("load_heat_joules_total", "Heat that the stream gave up (given) or took up (taken), as last committed to disk; survives restarts.", "load", "direction")
 	bridgedHeat = desc("load_bridged_heat_joules_total", "Heat by a straight line over short times without data, as last committed to disk; in no other register, and survives restarts.", "load", "direction")
 	spent       = desc("load_time_seconds_total", "Time accounted for, by kind, as last committed to disk; survives restarts.", "load", "kind")
+	doubtful    = desc("load_uncertain_seconds_total", "Part of the measured time for which an uncertain reading was used, as last committed to disk; survives restarts.", "load")
+	grade       = desc("load_quality", "1 for the quality of the figure, the worst of the readings that it was computed from, 0 for the others; bad while the load is blind.", "load", "quality")
 	latent      = desc("load_latent", "1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.", "load")
 	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
 	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
@@ -46,6 +49,8 @@ var (
 	readings = desc("tag_readings_total", "Readings accepted since the agent started.", "tag")
 	refused  = desc("tag_refused_total", "Messages refused since the agent started, by tag and reason; reasons that a tag has not met are left out.", "tag", "reason")
 	refusals = desc("refused_total", "Messages refused since the agent started, by reason, over all tags.", "reason")
+	doubted  = desc("tag_doubted_total", "Readings that are uncertain or bad, or good from a device that asks for maintenance, since the agent started, by tag and reason; reasons that a tag has not met are left out.", "tag", "reason")
+	doubts   = desc("doubted_total", "The same by reason, over all tags.", "reason")
 	late     = desc("tag_late_readings_total", "Readings that came after their time was accounted for: kept, but in no figure.", "tag")
 	unclear  = desc("tag_unclear_counts_total", "Counts of a counter after which it is not known what passed: it fell (reset), or rose by more than can be (implausible).", "tag", "kind")
 	repeated = desc("tag_repeated_readings_total", "Readings delivered more than once and counted once.", "tag")
@@ -107,6 +112,7 @@ func (c *Collector) Gather() ([]*dto.MetricFamily, error) {
 	for i := range s.Loads {
 		figure, v := s.Current(i, now)
 		out.figure(s.Loads[i].Name, &figure)
+		out.quality(s.Loads[i].Name, &figure)
 		out.load(&s.Loads[i], v)
 		out.means(s, i, now)
 	}
@@ -114,6 +120,7 @@ func (c *Collector) Gather() ([]*dto.MetricFamily, error) {
 		out.tag(&s.Tags[i])
 	}
 	out.refusals(s.Tags)
+	out.doubts(s.Tags)
 	out.agent(s)
 	return slices.DeleteFunc(out.gathered, func(f *dto.MetricFamily) bool { return f == nil }), nil
 }
@@ -152,6 +159,14 @@ func (o *sink) figure(name string, f *loads.Figure) {
 	o.gauge(outlet, celsius(f.Outlet), name)
 }
 
+var grades = [...]quality.Quality{quality.Good, quality.Uncertain, quality.Bad}
+
+func (o *sink) quality(name string, f *loads.Figure) {
+	for _, q := range grades {
+		o.gauge(grade, truth(q == f.Quality()), name, q.String())
+	}
+}
+
 func (o *sink) load(l *view.Load, now design.Verdict) {
 	o.counter(heat, l.Booked.Given, l.Name, "given")
 	o.counter(heat, l.Booked.Taken, l.Name, "taken")
@@ -163,6 +178,7 @@ func (o *sink) load(l *view.Load, now design.Verdict) {
 	if w := l.Witness; w != nil {
 		o.witness(l.Name, w)
 	}
+	o.counter(doubtful, float64(l.Booked.Uncertain)/1e9, l.Name)
 	if l.Design != 0 {
 		o.gauge(expected, l.Design, l.Name)
 	}
@@ -204,10 +220,29 @@ func (o *sink) tag(t *view.Tag) {
 		o.counter(unclear, float64(t.Resets), t.Name, "reset")
 		o.counter(unclear, float64(t.Leaps), t.Name, "implausible")
 	}
+	for _, d := range t.Doubted {
+		o.counter(doubted, float64(d.Count), t.Name, d.Reason)
+	}
 	for _, r := range t.Refused {
 		if r.Count > 0 {
 			o.counter(refused, float64(r.Count), t.Name, r.Reason)
 		}
+	}
+}
+
+// reasons are those of all marks.
+var reasons = view.Doubts()
+
+// doubts adds up over the tags, so that every reason has a series from the start.
+func (o *sink) doubts(tags []view.Tag) {
+	sums := make(map[string]uint64, len(reasons))
+	for i := range tags {
+		for _, d := range tags[i].Doubted {
+			sums[d.Reason] += d.Count
+		}
+	}
+	for _, reason := range reasons {
+		o.counter(doubts, float64(sums[reason]), reason)
 	}
 }
 

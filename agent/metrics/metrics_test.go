@@ -1,6 +1,7 @@
 package metrics
 
 import (
+	"fmt"
 	"regexp"
 	"strings"
 	"testing"
@@ -11,6 +12,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/ingest/quality"
 )
 
 const instant = int64(1_700_000_000_500_000_000)
@@ -21,18 +23,18 @@ func snapshot() *view.Snapshot {
 		Loads: []view.Load{
 			{
 				Name: "hot-water", Verdict: design.Short, Design: 640e3, Allow: 0.08,
-				Figure:  loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, Random: 2e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15},
+				Figure:  loads.Figure{At: instant, Duty: 500e3, Uncertainty: 6e3, Random: 2e3, MassFlow: 3, Inlet: 403.15, Outlet: 363.15, Mark: quality.Stuck, By: "TT-1"},
 				Until:   instant + 30e9,
 				Means:   [3]loads.Mean{{Duty: 501e3, Coverage: 1}, {Duty: 510e3, Coverage: 0.9}, {Duty: 520e3, Coverage: 0.25}},
-				Booked:  loads.Totals{Given: 1.5e9, Taken: 2, BridgedGiven: 3e6, BridgedTaken: 5, Measured: 3600e9, Bridged: 90e9, Missing: 60e9},
+				Booked:  loads.Totals{Given: 1.5e9, Taken: 2, BridgedGiven: 3e6, BridgedTaken: 5, Measured: 3600e9, Bridged: 90e9, Missing: 60e9, Uncertain: 120e9},
 				Witness: &view.Witness{Counted: 2e9, Served: 1.5e9, Deviation: -0.25, Told: true},
 			},
 			{Name: "dryer", Verdict: design.Blind, Figure: loads.Figure{Fault: loads.Stale, Reason: "old"}, Witness: &view.Witness{}},
 			{Name: "spare", Verdict: design.Idle, Figure: loads.Figure{Idle: true}, Until: instant + 30e9},
 		},
 		Tags: []view.Tag{
-			{Name: "TT-1", Newest: instant, MaxAge: 30e9, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}},
-			{Name: "TT-2", Refused: []view.Refusal{{Reason: "empty", Count: 4}, {Reason: "ahead"}}},
+			{Name: "TT-1", Newest: instant, MaxAge: 30e9, Accepted: 12, Late: 1, Repeated: 2, Refused: []view.Refusal{{Reason: "empty", Count: 3}, {Reason: "ahead"}}, Doubted: []view.Doubt{{Reason: "stuck", Count: 6}, {Reason: "failure", Count: 1}}},
+			{Name: "TT-2", Doubted: []view.Doubt{{Reason: "stuck", Count: 5}}, Refused: []view.Refusal{{Reason: "empty", Count: 4}, {Reason: "ahead"}}},
 		},
 		Broker:  view.Broker{Connected: true, Losses: 4, UnknownTopic: 5, Waiting: 7},
 		History: view.History{Bytes: 65536, Failures: 1},
@@ -100,6 +102,42 @@ heatreeve_refused_total{reason="empty"} 7
 		"heatreeve_load_duty_watts", "heatreeve_load_inlet_celsius", "heatreeve_load_coverage_ratio",
 		"heatreeve_load_witness_counted_joules", "heatreeve_load_witness_served_joules", "heatreeve_load_witness_deviation_ratio",
 		"heatreeve_load_expected_duty_watts", "heatreeve_tag_reading_timestamp_seconds", "heatreeve_tag_max_age_seconds", "heatreeve_tag_refused_total", "heatreeve_refused_total")
+	if err != nil {
+		t.Error(err)
+	}
+}
+
+func TestQuality(t *testing.T) {
+	want := `
+# HELP heatreeve_load_quality 1 for the quality of the figure, the worst of the readings that it was computed from, 0 for the others; bad while the load is blind.
+# TYPE heatreeve_load_quality gauge
+heatreeve_load_quality{load="dryer",quality="bad"} 1
+heatreeve_load_quality{load="dryer",quality="good"} 0
+heatreeve_load_quality{load="dryer",quality="uncertain"} 0
+heatreeve_load_quality{load="hot-water",quality="bad"} 0
+heatreeve_load_quality{load="hot-water",quality="good"} 0
+heatreeve_load_quality{load="hot-water",quality="uncertain"} 1
+heatreeve_load_quality{load="spare",quality="bad"} 0
+heatreeve_load_quality{load="spare",quality="good"} 1
+heatreeve_load_quality{load="spare",quality="uncertain"} 0
+# HELP heatreeve_load_uncertain_seconds_total Part of the measured time for which an uncertain reading was used, as last committed to disk; survives restarts.
+# TYPE heatreeve_load_uncertain_seconds_total counter
+heatreeve_load_uncertain_seconds_total{load="dryer"} 0
+heatreeve_load_uncertain_seconds_total{load="hot-water"} 120
+heatreeve_load_uncertain_seconds_total{load="spare"} 0
+# HELP heatreeve_tag_doubted_total Readings that are uncertain or bad, or good from a device that asks for maintenance, since the agent started, by tag and reason; reasons that a tag has not met are left out.
+# TYPE heatreeve_tag_doubted_total counter
+heatreeve_tag_doubted_total{reason="failure",tag="TT-1"} 1
+heatreeve_tag_doubted_total{reason="stuck",tag="TT-1"} 6
+heatreeve_tag_doubted_total{reason="stuck",tag="TT-2"} 5
+# HELP heatreeve_doubted_total The same by reason, over all tags.
+# TYPE heatreeve_doubted_total counter
+`
+	for _, m := range quality.Marks() {
+		want += fmt.Sprintf("heatreeve_doubted_total{reason=%q} %d\n", m.String(), map[quality.Mark]int{quality.Stuck: 11, quality.Failed: 1}[m])
+	}
+	err := testutil.GatherAndCompare(registry(snapshot(), instant+5e9), strings.NewReader(want),
+		"heatreeve_load_quality", "heatreeve_load_uncertain_seconds_total", "heatreeve_tag_doubted_total", "heatreeve_doubted_total")
 	if err != nil {
 		t.Error(err)
 	}

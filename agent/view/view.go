@@ -10,6 +10,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
+	"heatreeve/ingest/quality"
 )
 
 // Snapshot is the agent at one beat. Instants are Unix nanoseconds.
@@ -58,6 +59,7 @@ type Tag struct {
 	Late     uint64    // arrived after their interval was accounted for
 	Repeated uint64    // delivered more than once
 	Refused  []Refusal // one entry a reason, all reasons, in a fixed order
+	Doubted  []Doubt   // readings accepted that have a mark; one entry a reason that was met
 	Counter  bool      // a register that only rises
 	Resets   uint64    // falls of a counter that no roll-over explains
 	Leaps    uint64    // rises of a counter by more than can have passed
@@ -67,6 +69,22 @@ type Tag struct {
 type Refusal struct {
 	Reason string
 	Count  uint64
+}
+
+// Doubt counts the readings of a tag that have one mark: they are uncertain or bad, or good
+// from a device that asks for maintenance.
+type Doubt struct {
+	Reason string
+	Count  uint64
+}
+
+// Doubts lists the reasons of all marks that there are, in a fixed order.
+func Doubts() []string {
+	var all []string
+	for _, m := range quality.Marks() {
+		all = append(all, m.String())
+	}
+	return all
 }
 
 // AllBrokers are the main broker and those beside it.

@@ -6,7 +6,10 @@
 // history with its reading, and never changes its meaning.
 package quality
 
-import "fmt"
+import (
+	"fmt"
+	"slices"
+)
 
 // Quality is how far a reading, or a figure worked from readings, can be relied on:
 // the severities of a status code of IEC 62541-4, section 7.39. A greater one is worse.
@@ -85,6 +88,18 @@ var words = map[Mark]string{
 	Disagrees: "disagrees", NotZero: "not-zero", WrongOrder: "wrong-order",
 	Rejected: "rejected-by-source", Failed: "failure", FunctionCheck: "function-check", NoValue: "no-value",
 	Offline: "offline", StaleAtSource: "stale-at-source", OutOfService: "out-of-service",
+}
+
+// Marks lists all that there are but [None], by their numbers.
+func Marks() []Mark {
+	var all []Mark
+	for m := range words {
+		if m != None {
+			all = append(all, m)
+		}
+	}
+	slices.Sort(all)
+	return all
 }
 
 // String is the reason's word, such as "stuck".

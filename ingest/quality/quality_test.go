@@ -1,6 +1,9 @@
 package quality
 
-import "testing"
+import (
+	"slices"
+	"testing"
+)
 
 // Numbers stand in histories, so a change of one is a change of the past.
 func TestMarksKeepTheirNumbers(t *testing.T) {
@@ -32,6 +35,13 @@ func TestQualityAndWords(t *testing.T) {
 		if tt.m.Quality() != tt.q || tt.m.String() != tt.word {
 			t.Errorf("mark %d: %v, %q; want %v, %q", uint8(tt.m), tt.m.Quality(), tt.m.String(), tt.q, tt.word)
 		}
+	}
+}
+
+func TestMarks(t *testing.T) {
+	all := Marks()
+	if len(all) != len(words)-1 || !slices.IsSorted(all) || slices.Contains(all, None) || !slices.Contains(all, OutOfService) {
+		t.Errorf("marks %v", all)
 	}
 }
 

@@ -15,6 +15,7 @@ import (
 	"heatreeve/agent/site"
 	"heatreeve/configs"
 	"heatreeve/ingest"
+	"heatreeve/ingest/quality"
 )
 
 func readme(t *testing.T) string {
@@ -136,6 +137,11 @@ func TestReadmeShowsGoodTests(t *testing.T) {
 		t.Errorf("the README shows %+v", l)
 	}
 	words, _, _ = strings.Cut(words, "\n### ")
+	for _, m := range quality.Marks() {
+		if !strings.Contains(words, "`"+m.String()+"`") {
+			t.Errorf("the README says nothing of readings that are %q", m)
+		}
+	}
 	for _, key := range []string{"plausible", "fastest", "stuck", "spikes", "beside", "running", "both_ways"} {
 		if !strings.Contains(words, "`"+key) {
 			t.Errorf("the README says nothing of %s", key)
