@@ -61,6 +61,9 @@ func explanationOf(v url.Values) (q Explanation, err error) {
 // last that is accounted for.
 func (h *history) instant(q Explanation) (at int64, err error) {
 	through := h.through()
+	if through <= 0 {
+		return 0, fmt.Errorf("%w yet; ask again once the first readings are committed", errNoRecord)
+	}
 	if q.At == "" {
 		return through - 1, nil
 	}
@@ -191,6 +194,9 @@ func (h *history) nothing(load string, g int64, s *site.Site) error {
 		return errors.Join(err, bad)
 	}
 	hour := g - g%int64(time.Hour)
+	for range h.db.Minutes(ids[load], hour, hour+int64(time.Hour)) {
+		return err // of that hour there are others
+	}
 	for x, bad := range h.db.Hours(ids[load], hour, hour+1) {
 		if bad == nil && x.Measured > 0 {
 			return fmt.Errorf("%w; of that hour only the sums are left: heatreeve report --by hour tells them", err)

@@ -1,12 +1,18 @@
 package main
 
 import (
+	"context"
+	"encoding/json"
 	"fmt"
 	"math"
 	"regexp"
 	"strconv"
 	"strings"
 	"testing"
+	"time"
+
+	"heatreeve/agent/site"
+	"heatreeve/agent/working"
 )
 
 // calculator works what is printed between two =, by the rules of school.
@@ -226,6 +232,154 @@ func TestEveryWorkingCanBeFollowed(t *testing.T) {
 			n := followed(t, out)
 			if n < 10 || strings.Contains(out, "has no duty") {
 				t.Errorf("%s: %d formulas:\n%s", name, n, out)
+			}
+		}
+	}
+}
+
+// A load without a duty is explained by what is missing, since when, and what was seen last;
+// an idle one by its flow; and what can be followed can be.
+func TestExplainWithoutADuty(t *testing.T) {
+	p := play(t, "brackwater-creamery.yaml", func(tag *site.Tag, s int) bool {
+		return s%10 == 0 && !(tag.Name == "FT-201" && s >= 3000) && !(tag.Name == "TT-302" && s >= 600 && s < 1200) && tag.Name != "TT-402"
+	})
+	at := func(s int) string { return p.from.Add(time.Duration(s) * time.Second).Format(time.RFC3339) }
+	for _, tt := range []struct {
+		load string
+		at   string
+		want []string
+	}{
+		{"hot-water", at(3031), []string{
+			`stale: tag "FT-201": last reading is older than its max_age of 30 s`,
+			`flow: tag "FT-201" last said `, " m3/h at 2026-12-01 09:49:50 +00:00; it holds for 30 s, and is missing since 2026-12-01 09:50:20 +00:00",
+			"s old, good, not used: stale", "T1' inlet: ", "hot-water has no duty: stale. It is blind."}},
+		{"chilled-glycol", at(900), []string{`outlet: tag "TT-302" last said`, "is missing since 2026-12-01 09:10:20 +00:00"}},
+		{"dryer-air", "", []string{`no reading: tag "TT-402" has sent nothing yet`, `outlet: tag "TT-402" has sent nothing`}},
+	} {
+		args := []string{tt.load, "--data", p.data}
+		if tt.at != "" {
+			args = append(args, "--at", tt.at)
+		}
+		out := explain(t, args...)
+		flat := strings.Join(strings.Fields(out), " ")
+		for _, want := range tt.want {
+			if !strings.Contains(flat, want) {
+				t.Errorf("%s does not say %q:\n%s", tt.load, want, out)
+			}
+		}
+		followed(t, out)
+	}
+	if out := explain(t, "chilled-glycol", "--data", p.data, "--at", at(1900)); followed(t, out) < 15 {
+		t.Errorf("the past of a load that is back:\n%s", out)
+	}
+}
+
+// What is asked wrongly is told with what there is.
+func TestExplainRefuses(t *testing.T) {
+	p := play(t, "brackwater-creamery.yaml", nil)
+	for _, tt := range []struct {
+		args   []string
+		status int
+		want   string
+	}{
+		{[]string{"--data", p.data}, exitWrong, "the load is missing"},
+		{[]string{"hot-water"}, exitWrong, "--data must be given"},
+		{[]string{"hot-watr", "--data", p.data}, exitWrong, `load "hot-watr" is not in the site file of then; did you mean "hot-water"?`},
+		{[]string{"steam", "--data", p.data}, exitWrong, `there are: hot-water, chilled-glycol, dryer-air`},
+		{[]string{"hot-water", "--data", p.data, "--at", "noon"}, exitWrong, `--at "noon" is no date`},
+		{[]string{"hot-water", "--data", p.data, "--at", "2027-01-01"}, exitWrong, "--at 2027-01-01: the history goes up to 2026-12-01 10:15:00 +00:00"},
+		{[]string{"hot-water", "--data", p.data, "--at", "2026-11-01"}, exitFailed, `no record of load "hot-water" at 2026-11-01 00:00:00 +00:00, nor readings of its tags before`},
+		{[]string{"hot-water", "--data", p.data, "--at", "2026-11-01", "--zone", "Mars"}, exitWrong, `--zone "Mars" is not known`},
+		{[]string{"hot-water", "--data", t.TempDir()}, exitFailed, "no history in"},
+	} {
+		status, out, errs := invoke(append([]string{"explain"}, tt.args...)...)
+		if status != tt.status || !strings.Contains(errs, tt.want) || out != "" {
+			t.Errorf("explain %q: status %d, %q%q; want %d, %q", tt.args, status, out, errs, tt.status, tt.want)
+		}
+	}
+}
+
+// The JSON has the lines of the text, and the figure beside them.
+func TestExplainAsJSON(t *testing.T) {
+	p := play(t, "tarnholt-heat-works.yaml", nil)
+	for i := range p.site.Loads {
+		name := p.site.Loads[i].Name
+		printed := linesOf(explain(t, name, "--data", p.data))
+		w := askJSON[working.Working](t, "explain", name, "--data", p.data)
+		var told []working.Line
+		for _, s := range w.Sections {
+			for _, l := range s.Lines {
+				if l.Shown != "" {
+					told = append(told, l)
+				}
+			}
+		}
+		if len(printed) != len(told) || len(printed) < 20 || w.Duty == nil || w.Site != p.site.Name || w.Quality != "good" {
+			t.Fatalf("%s: %d lines printed, %d as JSON: %+v", name, len(printed), len(told), w)
+		}
+		for k, l := range printed {
+			if l.symbol != told[k].Symbol || l.value != told[k].Shown || l.formula != told[k].Formula || l.law != told[k].Law {
+				t.Errorf("%s: printed %+v, as JSON %+v", name, l, told[k])
+			}
+			if x, err := strconv.ParseFloat(l.value, 64); err != nil || !sameDigits(told[k].Value, l.value) {
+				t.Errorf("%s: %s is printed as %s (%g, %v), and is %.12g", name, l.words, l.value, x, err, told[k].Value)
+			}
+		}
+	}
+}
+
+// While an agent runs it is asked, for the newest figure and for the past; afterwards the
+// file tells the same of the past.
+func TestExplainWhileTheDemoRuns(t *testing.T) {
+	data := t.TempDir()
+	ctx, cancel := context.WithCancel(t.Context())
+	defer cancel()
+	var out, errs heard
+	ended := make(chan int, 1)
+	go func() {
+		ended <- run(ctx, []string{"demo", "--data", data, "--listen", "127.0.0.1:0", "--speed", "600"}, &out, &errs)
+	}()
+	newest := awaitExplanation(t, ended, "explain", "hot-water", "--data", data)
+	if followed(t, newest) < 15 {
+		t.Errorf("of the running demo:\n%s", newest)
+	}
+	var w working.Working
+	_, text, _ := invoke("explain", "hot-water", "--data", data, "--json")
+	if err := json.Unmarshal([]byte(text), &w); err != nil {
+		t.Fatal(err)
+	}
+	past := []string{"explain", "hot-water", "--data", data, "--at", w.At.Format(time.RFC3339)}
+	before := awaitExplanation(t, ended, past...) // once it is committed
+	if followed(t, before) < 15 {
+		t.Errorf("the past while the demo runs:\n%s", before)
+	}
+	if status, _, said := invoke("explain", "hot-watre", "--data", data); status != exitWrong || !strings.Contains(said, `did you mean "hot-water"?`) {
+		t.Errorf("a wrong load: status %d, %s", status, said)
+	}
+	cancel()
+	if status := <-ended; status != exitGood {
+		t.Fatalf("demo: status %d, %s%s", status, &out, &errs)
+	}
+	if status, after, said := invoke(past...); status != exitGood || after != before {
+		t.Errorf("after the end: status %d, %s\n%s\nwas\n%s", status, said, after, before)
+	}
+}
+
+// awaitExplanation asks until the hot water has a duty.
+func awaitExplanation(t *testing.T, ended <-chan int, args ...string) string {
+	t.Helper()
+	ticker, deadline := time.NewTicker(100*time.Millisecond), time.After(60*time.Second)
+	defer ticker.Stop()
+	for {
+		select {
+		case status := <-ended:
+			t.Fatalf("the demo has ended with status %d", status)
+		case <-deadline:
+			_, text, errs := invoke(args...)
+			t.Fatalf("no explanation within 60 s: %s%s", text, errs)
+		case <-ticker.C:
+			if status, text, _ := invoke(args...); status == exitGood && strings.Contains(text, "hot-water serves") {
+				return text
 			}
 		}
 	}

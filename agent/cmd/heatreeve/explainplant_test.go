@@ -149,6 +149,11 @@ func (p *played) values(t *testing.T) []func(s int) float64 {
 			}
 		}
 	}
+	for i := range p.site.Tags {
+		if t := &p.site.Tags[i]; t.HasBeside {
+			values[t.Beside] = values[i]
+		}
+	}
 	for i := range values {
 		if values[i] == nil {
 			values[i] = func(int) float64 { return 1 } // signs of life, and what no load reads
