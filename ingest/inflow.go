@@ -52,12 +52,13 @@ func (f *inflow) Read(p []byte) (int, error) {
 }
 
 const ( // packet types: MQTT 3.1.1, table 2.1
-	publish   = 3
-	puback    = 4
-	subscribe = 8
-	subAck    = 9
-	pingreq   = 12
-	pingresp  = 13
+	publish    = 3
+	puback     = 4
+	subscribe  = 8
+	subAck     = 9
+	pingreq    = 12
+	pingresp   = 13
+	disconnect = 14
 )
 
 // next takes a message, or the fixed header of another packet.

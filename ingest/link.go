@@ -19,7 +19,9 @@ type link struct {
 	net.Conn
 	in      inflow
 	timeout time.Duration
-	failed  atomic.Pointer[error] // of the first write that did
+	writing sync.Mutex
+	failed  error                 // of the first write that did; guarded by writing
+	left    bool                  // our goodbye is written; guarded by writing
 	cause   atomic.Pointer[error] // why we ended it
 	parting atomic.Bool           // the next Close follows our goodbye
 	closing sync.Once
@@ -28,10 +30,16 @@ type link struct {
 
 const readBuffer = 64 << 10 // bytes
 
-// newLink gives each message to deliver, in the goroutine that reads.
+// newLink gives each message to deliver, in the goroutine that reads. Once we part,
+// the wait for the broker's end takes bytes from that goroutine, and what it reads
+// may be no message any more.
 func newLink(c net.Conn, writeTimeout time.Duration, deliver func(*link, *delivery)) *link {
 	l := &link{Conn: c, timeout: writeTimeout}
-	l.in = inflow{r: bufio.NewReaderSize(c, readBuffer), deliver: func(d *delivery) { deliver(l, d) }}
+	l.in = inflow{r: bufio.NewReaderSize(c, readBuffer), deliver: func(d *delivery) {
+		if !l.parting.Load() {
+			deliver(l, d)
+		}
+	}}
 	return l
 }
 
@@ -45,33 +53,51 @@ func (l *link) Read(p []byte) (int, error) {
 
 // Write fails when the peer takes nothing for the timeout; without it a dead
 // link blocks the library's detection of dead links. No write follows one that
-// failed, for that may have ended within a packet.
+// failed, for that may have ended within a packet. One at a time writes: the limit
+// of the next must not put off that of one which is stuck.
 func (l *link) Write(p []byte) (int, error) {
-	if failed := l.failed.Load(); failed != nil {
-		return 0, *failed
-	}
-	if err := l.SetWriteDeadline(time.Now().Add(l.timeout)); err != nil {
-		return 0, err
-	}
 	if len(p) > 0 && p[0]>>4 == pingreq {
 		l.in.probed.Store(true)
 	}
 	l.in.asked.note(p)
+	l.writing.Lock()
+	defer l.writing.Unlock()
+	return l.write(p)
+}
+
+// write is for who holds writing.
+func (l *link) write(p []byte) (int, error) {
+	if l.failed != nil {
+		return 0, l.failed
+	}
+	if err := l.Conn.SetWriteDeadline(time.Now().Add(l.timeout)); err != nil {
+		return 0, err
+	}
 	n, err := l.Conn.Write(p)
 	if err != nil {
-		l.failed.CompareAndSwap(nil, &err)
+		l.failed = err
+		return n, err
 	}
-	return n, err
+	l.left = l.left || len(p) > 0 && p[0]>>4 == disconnect
+	// Reading may have to write as well, at any time: RFC 8446, section 4.6.3.
+	_ = l.Conn.SetWriteDeadline(time.Time{}) // fails only on a connection that we have closed
+	return n, nil
 }
+
+// SetWriteDeadline does nothing: each write has a limit of its own, which another
+// goroutine must not take from it.
+func (l *link) SetWriteDeadline(time.Time) error { return nil }
 
 // acknowledge sends acknowledgements. If they cannot be sent the connection has
 // ended, and the broker delivers again what it got none for. Nothing may follow
 // our goodbye: MQTT 3.1.1, section 3.14.4.
 func (l *link) acknowledge(packets []byte) {
-	if l.parting.Load() {
+	l.writing.Lock()
+	defer l.writing.Unlock()
+	if l.left {
 		return
 	}
-	if _, err := l.Write(packets); err != nil {
+	if _, err := l.write(packets); err != nil {
 		l.end(fmt.Errorf("acknowledge: %w", err))
 	}
 }
