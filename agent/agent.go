@@ -24,6 +24,7 @@ import (
 	"golang.org/x/sync/errgroup"
 
 	"heatreeve/agent/metrics"
+	"heatreeve/agent/relay"
 	"heatreeve/agent/site"
 	"heatreeve/agent/view"
 	"heatreeve/store"
@@ -55,6 +56,7 @@ type Agent struct {
 	o       Options
 	clock   *stepless // nil where Options give one
 	intakes []*intake
+	relay   *relay.Relay  // nil where the site publishes nothing; for the beat alone
 	reached chan struct{} // one slot: a broker has sent all that it sends without an acknowledgement
 	latest  atomic.Pointer[view.Snapshot]
 	health  health
@@ -76,7 +78,7 @@ func New(s *site.Site, o Options) (*Agent, error) {
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question)}
+	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, relay: newRelay(s), reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question)}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil

@@ -171,6 +171,7 @@ func (a *Agent) beat(r *rhythm, system time.Time) {
 		}
 	}
 	a.publish(r)
+	a.tell(system, false)
 	a.watch.look(a.latest.Load(), a.o.Now())
 	a.health.tick(system)
 	notify("WATCHDOG=1")
@@ -184,6 +185,8 @@ func (a *Agent) last(r *rhythm) error {
 	if !a.commit(r, time.Now(), true) {
 		return fmt.Errorf("last commit: %s", r.books.fault)
 	}
+	a.publish(r)
+	a.tell(time.Now(), true)
 	if r.pace.through <= 0 {
 		a.o.Log.Info("heatreeve has stopped; event time had not begun")
 		return nil

@@ -25,3 +25,8 @@ var Demo []byte
 //
 //go:embed site.schema.json
 var Schema []byte
+
+// ResultSchema is the JSON Schema of what the agent publishes of a load.
+//
+//go:embed result.schema.json
+var ResultSchema []byte
