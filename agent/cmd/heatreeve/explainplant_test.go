@@ -3,12 +3,14 @@ package main
 import (
 	"context"
 	"errors"
+	"fmt"
 	"hash/fnv"
 	"io/fs"
 	"log/slog"
 	"math"
 	"net"
 	"path/filepath"
+	"slices"
 	"testing"
 	"time"
 
@@ -95,7 +97,11 @@ func runOnce(t *testing.T, s *site.Site, data string) {
 	t.Helper()
 	quiet := *s
 	quiet.Broker = site.Broker{URL: "mqtt://127.0.0.1:1", ClientID: "test"}
-	quiet.Brokers = nil
+	quiet.Brokers = slices.Clone(s.Brokers) // tags name them
+	for i := range quiet.Brokers {
+		b := &quiet.Brokers[i]
+		*b = site.Broker{Name: b.Name, URL: quiet.Broker.URL, ClientID: fmt.Sprintf("test-%d", i)}
+	}
 	ctx, cancel := context.WithCancel(t.Context())
 	defer cancel()
 	a, err := agent.New(&quiet, agent.Options{Data: data, Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Ready: func(net.Addr) { cancel() }})
