@@ -8,6 +8,7 @@ import (
 	"net"
 	"strings"
 	"sync"
+	"sync/atomic"
 	"testing"
 	"time"
 
@@ -79,9 +80,9 @@ func TestResultsArePublished(t *testing.T) {
 	defer b.Close()
 	text := strings.Replace(benchSite, `{url: "mqtt://127.0.0.1:1883"}`, `{url: "`+b.URL()+`", availability: heat/agent}`, 1)
 	s := parsed(t, text+"publish: {topic: heat/loads, every: 1 h}\ntiming: {commit: 1 s}\n")
-	var latest *view.Snapshot // of the beat's goroutine, read after its end
+	var newest atomic.Pointer[view.Snapshot]
 	a, err := New(s, Options{Data: t.TempDir(), Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Ready: func(net.Addr) {},
-		Beat: func(v *view.Snapshot) { latest = v }})
+		Beat: newest.Store})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -93,6 +94,8 @@ func TestResultsArePublished(t *testing.T) {
 	stop := plantOn(t, b.URL(), time.Now)
 	results.await(t, "a first result", func(n map[string]string) bool { return n["heat/loads/main"] != "" })
 	first := results.all()["heat/loads/main"]
+	begun := newest.Load().Loads[0].Booked.Measured
+	results.await(t, "more to tell", func(map[string]string) bool { return newest.Load().Loads[0].Booked.Measured > begun+2*sec })
 	stop()
 	cancel()
 	if err := <-ended; err != nil {
@@ -109,6 +112,7 @@ func TestResultsArePublished(t *testing.T) {
 	if err := json.Unmarshal([]byte(last), &got); err != nil {
 		t.Fatalf("%q: %v", last, err)
 	}
+	latest := newest.Load()
 	booked := latest.Loads[0].Booked
 	if last == first || got.Load != "main" || got.Time.UnixNano() != latest.At || got.Measured != float64(booked.Measured)/1e9 || got.Given-booked.Given > 1 || booked.Given-got.Given > 1 {
 		t.Errorf("last result %s; the agent ended at %d with %+v", last, latest.At, booked)
