@@ -125,6 +125,9 @@ func TestTopicsOfRemovedTagsAreLeft(t *testing.T) {
 func TestStraysAreBounded(t *testing.T) {
 	s := newStrays()
 	s.note(strings.Repeat("t", longestStray+1))
+	for _, impossible := range []string{"", "a/#", "a/+/b", "a\x00", "a\xff"} {
+		s.note(impossible)
+	}
 	if got := s.take(); len(got) != 0 {
 		t.Errorf("a topic of %d bytes gave %d filters", longestStray+1, len(got))
 	}

@@ -20,15 +20,21 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 // The first packet is passed on whatever it is: the library judges it.
 //
 // The library probes a connection on which it sees nothing, and would take one on which
-// the answer comes behind many messages for dead. So a message answers the probe too.
+// the answer comes behind many messages, or a long one, for dead. So whatever comes of a
+// message answers the probe too.
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
 	confirm func(id uint16) // a message of ours has come to the broker
 	asked   requests
-	most    int         // bytes of a body that are read; 0: maxPacket
-	message delivery    // at hand
-	begun   bool        // the first packet has come
+	most    int      // bytes of a body that are read; 0: maxPacket
+	message delivery // at hand
+	begun   bool     // the first packet has come
+	taking  bool     // a message comes, with this first byte and so many bytes of body
+	first   byte
+	size    int
+	long    []byte      // what has come of it, where it does not fit the buffer of the reader
+	rest    int         // bytes of a message delivered that are to be left out
 	probed  atomic.Bool // the library waits for an answer
 	room    [5]byte
 	head    []byte // of the packet, yet to be passed on
@@ -63,6 +69,12 @@ const ( // packet types: MQTT 3.1.1, table 2.1
 
 // next takes a message, or the fixed header of another packet.
 func (f *inflow) next() error {
+	switch {
+	case f.rest > 0:
+		return f.skip()
+	case f.taking:
+		return f.take()
+	}
 	first, err := f.r.ReadByte()
 	if err != nil {
 		return err
@@ -72,7 +84,8 @@ func (f *inflow) next() error {
 	case err != nil:
 		return err
 	case first>>4 == publish && f.begun:
-		return f.take(first, length)
+		f.taking, f.first, f.size = true, first, length
+		return f.take()
 	case first>>4 == puback && f.begun && length == 2 && f.confirm != nil:
 		if ours, err := f.confirmed(); ours || err != nil {
 			return err
@@ -97,27 +110,74 @@ func (f *inflow) next() error {
 
 func (f *inflow) longest() int { return max(f.most, maxPacket) }
 
-// take delivers a message, which lies in the buffer of the reader where it fits.
-func (f *inflow) take(first byte, length int) error {
-	kept := min(length, f.longest())
-	rest := length
-	body, err := f.r.Peek(kept)
-	if errors.Is(err, bufio.ErrBufferFull) {
-		body, rest = make([]byte, kept), length-kept
-		_, err = io.ReadFull(f.r, body)
-	}
-	if err == nil {
-		err = f.message.parse(first, body)
-	}
-	if err != nil {
+// take delivers a message once it is there; before that it returns to answer a probe.
+func (f *inflow) take() error {
+	kept := min(f.size, f.longest())
+	there, err := f.gather(kept)
+	if !there {
 		return cutShort(err)
 	}
-	f.deliver(&f.message)
-	if f.probed.Swap(false) {
-		f.head = append(f.room[:0], pingresp<<4, 0)
+	body := f.long
+	f.rest, f.long = f.size-len(body), nil
+	if body == nil {
+		body, _ = f.r.Peek(kept) // which is there
 	}
-	_, err = f.r.Discard(rest)
-	return cutShort(err)
+	if err := f.message.parse(f.first, body); err != nil {
+		return err
+	}
+	f.taking = false
+	f.deliver(&f.message)
+	f.answer()
+	return nil
+}
+
+// gather waits for n bytes, in the buffer of the reader or, where they do not fit, in long.
+// They are not there yet when it has answered a probe.
+func (f *inflow) gather(n int) (there bool, err error) {
+	if n > f.r.Size() && f.long == nil {
+		f.long = make([]byte, 0, n)
+	}
+	for {
+		if f.long == nil && f.r.Buffered() >= n || f.long != nil && len(f.long) == n {
+			return true, nil
+		}
+		if err := f.more(n); err != nil || f.answer() {
+			return false, err
+		}
+	}
+}
+
+// more waits for at least one byte of n.
+func (f *inflow) more(n int) error {
+	if f.long == nil {
+		_, err := f.r.Peek(f.r.Buffered() + 1)
+		return err
+	}
+	got, err := f.r.Read(f.long[len(f.long):n])
+	f.long = f.long[:len(f.long)+got]
+	return err
+}
+
+// skip leaves out what is not wanted of a message, or returns to answer a probe.
+func (f *inflow) skip() error {
+	if f.r.Buffered() == 0 {
+		if _, err := f.r.Peek(1); err != nil {
+			return cutShort(err)
+		}
+		f.answer()
+	}
+	n, err := f.r.Discard(min(f.rest, f.r.Buffered()))
+	f.rest -= n
+	return err
+}
+
+// answer passes an answer on, if the library waits for one to its probe.
+func (f *inflow) answer() bool {
+	if !f.probed.Swap(false) {
+		return false
+	}
+	f.head = append(f.room[:0], pingresp<<4, 0)
+	return true
 }
 
 // confirmed takes a PUBACK (MQTT 3.1.1, section 3.4), unless it is of a packet of the
@@ -132,9 +192,7 @@ func (f *inflow) confirmed() (ours bool, err error) {
 		return false, nil
 	}
 	f.confirm(id)
-	if f.probed.Swap(false) {
-		f.head = append(f.room[:0], pingresp<<4, 0)
-	}
+	f.answer()
 	_, err = f.r.Discard(2)
 	return true, err
 }

@@ -70,6 +70,33 @@ func TestMessagesAreTakenOut(t *testing.T) {
 	}
 }
 
+// A long message on a slow line answers probes while it comes, at every byte: where it
+// fits the buffer, where it does not, and where it is only left out.
+func TestWhatComesOfAMessageAnswersProbes(t *testing.T) {
+	for _, size := range []int{100, MaxPayload, 3 * maxPacket} {
+		stream := append([]byte(welcome), encoded(t, message311("a", make([]byte, size)))...)
+		got := 0
+		f := &inflow{deliver: func(d *delivery) { got++ }}
+		f.r = bufio.NewReaderSize(iotest.OneByteReader(bytes.NewReader(stream)), readBuffer)
+		if _, err := io.ReadFull(f, make([]byte, len(welcome))); err != nil {
+			t.Fatal(err)
+		}
+		answers := 0
+		for ; ; answers++ {
+			f.probed.Store(true)
+			var b [2]byte
+			if _, err := io.ReadFull(f, b[:]); errors.Is(err, io.EOF) {
+				break
+			} else if err != nil || b != [2]byte{pingresp << 4, 0} {
+				t.Fatalf("%d bytes: read %x, %v after %d answers", size, b, err, answers)
+			}
+		}
+		if got != 1 || answers < size {
+			t.Errorf("%d bytes: %d messages, %d answers; want 1 and an answer for each byte", size, got, answers)
+		}
+	}
+}
+
 // A message is nothing to begin with; the library knows what is.
 func TestFirstPacketIsPassedOn(t *testing.T) {
 	stream := encoded(t, message311("a", []byte("5")))

@@ -32,8 +32,8 @@ func newStrays() *strays { return &strays{known: make(map[string]bool), some: ma
 
 // note takes in a topic that nobody asked for.
 func (s *strays) note(topic string) {
-	if len(topic) > longestStray {
-		return
+	if len(topic) > longestStray || checkTopic(topic) != nil {
+		return // a broker may end the connection over a filter that cannot be
 	}
 	s.mu.Lock()
 	defer s.mu.Unlock()
