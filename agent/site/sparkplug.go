@@ -116,7 +116,7 @@ func (r *reader) aliveBySparkplug(v value, t *Tag) int {
 	return len(r.told) - 1
 }
 
-// hostID reads the id of a Sparkplug host application: chapter 6 of the standard.
+// hostID reads the id of a Sparkplug host application: Sparkplug 3.0, chapter 4.
 func hostID(v value) string {
 	s, ok := v.text()
 	switch {

@@ -80,8 +80,8 @@ func TestSpaceAsksForBirths(t *testing.T) {
 	}
 }
 
-// The command as section 6.4 of the standard's duties has it: the metric by its name,
-// Boolean, true.
+// The command as Sparkplug 3.0 has it, chapter 5: the metric by its name, of the datatype
+// Boolean, and true.
 func TestRebirthRequest(t *testing.T) {
 	p, all := metrics(t, RebirthRequest(start*1e6))
 	if len(all) != 1 || p.Timestamp != uint64(start) || p.Numbered {

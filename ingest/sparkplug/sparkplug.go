@@ -8,6 +8,9 @@
 // lengths, counts, and the room that names and aliases take are bounded, nested
 // values are passed over unread, and a message is used as a whole or not at all.
 //
+// Field numbers, datatypes and rules are those of the text of Sparkplug 3.0 (Eclipse, state
+// of February 2024); the chapters that comments name are from memory.
+//
 // A subscriber by this package reads, and does no more unless told to: it is a host
 // application in the standard's sense only where it publishes its [State] too.
 package sparkplug
