@@ -49,7 +49,7 @@ func (p *page) hold() {
 	if s.Hold == 0 {
 		return
 	}
-	words := fmt.Sprintf("inlet temperature of what leaves now: plug flow through %s L", fixed(s.Hold*1e3, 6))
+	words := fmt.Sprintf("inlet temperature of what leaves now, plug flow through %s L", fixed(s.Hold*1e3, 6))
 	p.at["reading"] = p.at["inlet"]
 	p.at["inlet"] = p.given("T1h", words, b.State.Inlet, "K", place(b.State.Inlet, fine+2), "from the flow and inlet since then")
 }

@@ -63,7 +63,7 @@ func tellWorking(w io.Writer, x *working.Working) error {
 	fmt.Fprintf(w, "%s\n\n", wrapped(fmt.Sprintf("%s: %s, %s and %g s on", x.Site, x.Load, x.At.Format("2006-01-02 15:04:05 -07:00"), x.Span), ""))
 	var sources []string
 	for _, s := range x.Sections {
-		fmt.Fprintf(w, "%s\n", s.Title)
+		fmt.Fprintln(w, wrapped(s.Title, "    "))
 		wide := symbolWidth(s.Lines)
 		for _, l := range s.Lines {
 			fmt.Fprintln(w, workingLine(&l, wide, &sources))

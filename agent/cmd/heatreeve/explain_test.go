@@ -10,6 +10,7 @@ import (
 	"strings"
 	"testing"
 	"time"
+	"unicode/utf8"
 
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
@@ -169,6 +170,11 @@ func explain(t *testing.T, args ...string) string {
 func followed(t *testing.T, text string) (formulas int) {
 	t.Helper()
 	values := map[string]string{}
+	for line := range strings.Lines(text) {
+		if n := utf8.RuneCountInString(line); n > width+1 {
+			t.Errorf("a line of %d columns: %s", n-1, line)
+		}
+	}
 	for _, l := range linesOf(text) {
 		if strings.HasPrefix(l.words, "cannot be read") {
 			t.Error(l.words)
@@ -271,6 +277,28 @@ func TestExplainWithoutADuty(t *testing.T) {
 	}
 	if out := explain(t, "chilled-glycol", "--data", p.data, "--at", at(1900)); followed(t, out) < 15 {
 		t.Errorf("the past of a load that is back:\n%s", out)
+	}
+}
+
+// So is one whose counter stands, whose flow is none, or whose content is at rest; and the
+// record of a minute whose readings are gone.
+func TestExplainAtRest(t *testing.T) {
+	p := play(t, "ostrel-maltings.yaml", nil, "wash/total", "malt/feed", "stones/temperature", "kettle/temperature")
+	for load, want := range map[string]string{
+		"keg washer": "nothing was counted: the load is idle", "malt kiln": "nothing to speak of flows: the load is idle",
+		"stone bed": "the content is at rest, and its duty is 0", "mash kettle": "is no more than idle_below: the content is at rest",
+	} {
+		out := explain(t, load, "--data", p.data)
+		if flat := strings.Join(strings.Fields(out), " "); !strings.Contains(flat, want) || !strings.Contains(flat, load+" is idle; its duty is 0.") || !strings.Contains(flat, "Verdict: idle") {
+			t.Errorf("%s does not say %q:\n%s", load, want, out)
+		}
+		if followed(t, out) == 0 {
+			t.Errorf("%s: no formula:\n%s", load, out)
+		}
+	}
+	out := explain(t, "hot-water", "--data", keep(t), "--at", "2026-10-25T12:00:10+00:00")
+	if n := followed(t, out); n < 6 || !strings.Contains(out, "no longer in the history") {
+		t.Errorf("of a record %d formulas:\n%s", n, out)
 	}
 }
 

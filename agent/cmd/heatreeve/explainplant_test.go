@@ -48,8 +48,9 @@ func siteFiles(t *testing.T) []string {
 
 // play makes the history of an example plant: the agent runs on it once, so that it knows
 // names and site file, and the readings come after that. What every says tells how often a
-// tag is heard, s being seconds since the beginning; nil is each ten seconds.
-func play(t *testing.T, file string, heard func(tag *site.Tag, s int) bool) *played {
+// tag is heard, s being seconds since the beginning; nil is each ten seconds. Those that are still
+// show no flow, or one temperature.
+func play(t *testing.T, file string, heard func(tag *site.Tag, s int) bool, still ...string) *played {
 	t.Helper()
 	text, err := configs.Files.ReadFile(file)
 	if err != nil {
@@ -71,6 +72,14 @@ func play(t *testing.T, file string, heard func(tag *site.Tag, s int) bool) *pla
 		t.Fatal(err)
 	}
 	values := p.values(t)
+	for i := range s.Tags {
+		if first := values[i](0); slices.Contains(still, s.Tags[i].Name) {
+			if s.Tags[i].Unit.Dimension != unit.Temperature {
+				first = 0
+			}
+			values[i] = func(int) float64 { return first }
+		}
+	}
 	var beats []store.Beat
 	for m := range playedMinutes {
 		b := store.Beat{Through: p.from.Add(time.Duration(m+1) * time.Minute).UnixNano()}
