@@ -65,7 +65,7 @@ func (p *page) enthalpies() (h1, h2 term) {
 	r, x := &p.Basis.Stream.Result, &p.Basis.Stream.State
 	n := p.enthalpyPlaces()
 	of := "enthalpy"
-	if r.Latent {
+	if p.Basis.Figure.Latent {
 		of = "enthalpy, the sensible part,"
 	}
 	at := func(end string, T, p float64) string {
