@@ -24,9 +24,10 @@ type socket struct {
 // upgrade asks for a websocket over a connection that stands, with TLS already where
 // the broker wants it.
 func upgrade(ctx context.Context, raw net.Conn, b broker) (*socket, error) {
+	bounded := &handshaking{Conn: raw, left: longestAnswer}
 	dialer := websocket.Dialer{
 		Subprotocols:   []string{"mqtt"},
-		NetDialContext: func(context.Context, string, string) (net.Conn, error) { return raw, nil },
+		NetDialContext: func(context.Context, string, string) (net.Conn, error) { return bounded, nil },
 	}
 	c, answer, err := dialer.DialContext(ctx, "ws://"+b.address()+b.path, nil)
 	switch {
@@ -37,7 +38,31 @@ func upgrade(ctx context.Context, raw net.Conn, b broker) (*socket, error) {
 	case c.Subprotocol() != "mqtt":
 		return nil, errors.Join(fmt.Errorf("%s is a websocket, but not one for MQTT; check port and path", b), c.Close())
 	}
+	bounded.done = true
 	return &socket{Conn: c}, nil
+}
+
+// longestAnswer bounds what a peer may say, in bytes, before its websocket stands; the
+// library would take in any number of header lines.
+const longestAnswer = 64 << 10
+
+// handshaking is a connection of which little is read until it is done.
+type handshaking struct {
+	net.Conn
+	left int
+	done bool
+}
+
+func (h *handshaking) Read(p []byte) (int, error) {
+	if h.done {
+		return h.Conn.Read(p)
+	}
+	if h.left <= 0 {
+		return 0, fmt.Errorf("the answer has more than %d bytes; check port and path", longestAnswer)
+	}
+	n, err := h.Conn.Read(p[:min(len(p), h.left)])
+	h.left -= n
+	return n, err
 }
 
 func (s *socket) Read(p []byte) (int, error) {

@@ -87,6 +87,7 @@ func TestWrongWebsockets(t *testing.T) {
 		"a page":          {func(w http.ResponseWriter, _ *http.Request) { w.WriteHeader(http.StatusOK) }, `the answer is "200 OK"`},
 		"no such path":    {http.NotFound, `the answer is "404 Not Found"`},
 		"not for MQTT":    {upgradeTo(), "not one for MQTT"},
+		"no end":          {endless, `more than 65536 bytes`},
 		"text, not bytes": {upgradeTo("mqtt"), "text message"},
 	} {
 		t.Run(name, func(t *testing.T) {
@@ -112,5 +113,18 @@ func upgradeTo(protocols ...string) http.HandlerFunc {
 		defer c.Close()
 		_ = c.WriteMessage(websocket.TextMessage, []byte("hello")) // it may have gone
 		_, _, _ = c.ReadMessage()
+	}
+}
+
+// endless answers with header lines for as long as somebody reads them.
+func endless(w http.ResponseWriter, _ *http.Request) {
+	c, _, err := http.NewResponseController(w).Hijack()
+	if err != nil {
+		return
+	}
+	defer c.Close()
+	_, err = io.WriteString(c, "HTTP/1.1 101 Switching Protocols\r\n")
+	for err == nil {
+		_, err = io.WriteString(c, "X-More: "+strings.Repeat("x", 1000)+"\r\n")
 	}
 }
