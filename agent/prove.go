@@ -9,6 +9,8 @@ import (
 	"strings"
 	"time"
 
+	"golang.org/x/sync/errgroup"
+
 	"heatreeve/agent/proving"
 	"heatreeve/agent/site"
 	"heatreeve/ingest"
@@ -17,42 +19,75 @@ import (
 // proveEvery is how often a trial takes what has come.
 const proveEvery = 50 * time.Millisecond
 
-// Prove holds a site against its broker for a while: it listens as one more client, with
-// a session of its own that leaves nothing behind, so that an agent on the same site goes
-// on undisturbed. It ends early with what there is when ctx does. progress is told what
-// has come so far; may be nil. The error is why it could not begin.
+// Prove holds a site against its brokers for a while: it listens as one more client of
+// each, with a session of its own that leaves nothing behind, so that an agent on the same
+// site goes on undisturbed. It ends early with what there is when ctx does. progress is
+// told what has come so far; may be nil. The error is why it could not begin.
 func Prove(ctx context.Context, s *site.Site, length time.Duration, progress func(readings int)) (*proving.Result, error) {
 	trial, err := proving.New(s, plantOf(s))
 	if err != nil {
 		return nil, err
 	}
-	o := connectionOf(s.Broker)
-	o.ClientID, o.Transient = "heatreeve-check-"+rand.Text()[:8], true
-	o.Ahead, o.Log, o.Rebirths = s.Timing.Ahead, slog.New(slog.DiscardHandler), s.Broker.Rebirths
-	session, err := ingest.New(signalsOf(s), o)
+	ears, err := newEars(s)
 	if err != nil {
-		return nil, fmt.Errorf("broker session: %w", err)
+		return nil, err
 	}
-	sessionCtx, end := context.WithCancel(context.WithoutCancel(ctx))
-	ended := make(chan error, 1)
-	go func() { ended <- session.Run(sessionCtx) }()
+	running, end := context.WithCancel(context.WithoutCancel(ctx))
+	var g errgroup.Group
+	for _, e := range ears {
+		g.Go(func() error { return e.session.Run(running) })
+	}
 	begun := time.Now()
-	err = listen(ctx, session, length, func(all []proving.Heard) { trial.Hear(all) }, progress)
+	err = listen(ctx, ears, length, trial.Hear, progress)
 	end()
-	if err = errors.Join(err, <-ended); err != nil {
-		return nil, fmt.Errorf("%s: %w", s.Broker.URL, err)
+	if err = errors.Join(err, g.Wait()); err != nil {
+		return nil, err
 	}
-	r := trial.Tell(time.Since(begun).Seconds(), refusedOf(s, session.Stats()))
+	refused := make([][]proving.Refused, len(s.Tags))
+	for _, e := range ears {
+		e.refused(refused)
+	}
+	r := trial.Tell(time.Since(begun).Seconds(), refused)
 	return &r, nil
 }
 
+// ear is what listens to one broker.
+type ear struct {
+	broker  site.Broker
+	session *ingest.Session
+	tags    []int // of the site, in the session's order
+	buf     []ingest.Received
+}
+
+func newEars(s *site.Site) ([]*ear, error) {
+	var ears []*ear
+	signals := signalsOf(s)
+	for i, b := range s.AllBrokers() {
+		e := &ear{broker: b}
+		var tags []ingest.Tag
+		for k := range s.Tags {
+			if s.Tags[k].Broker == i {
+				e.tags, tags = append(e.tags, k), append(tags, signals[k])
+			}
+		}
+		o := connectionOf(b)
+		o.ClientID, o.Transient = "heatreeve-check-"+rand.Text()[:8], true
+		o.Ahead, o.Log, o.Rebirths, o.Subscribe = s.Timing.Ahead, slog.New(slog.DiscardHandler), b.Rebirths, b.Subscribe
+		var err error
+		if e.session, err = ingest.New(tags, o); err != nil {
+			return nil, fmt.Errorf("session with %s: %w", b.Called(), err)
+		}
+		ears = append(ears, e)
+	}
+	return ears, nil
+}
+
 // listen takes what comes until the time is over.
-func listen(ctx context.Context, session *ingest.Session, length time.Duration, hear func([]proving.Heard), progress func(int)) error {
+func listen(ctx context.Context, ears []*ear, length time.Duration, hear func([]proving.Heard), progress func(int)) error {
 	ctx, cancel := context.WithTimeout(ctx, length)
 	defer cancel()
 	ticker := time.NewTicker(proveEvery)
 	defer ticker.Stop()
-	var received []ingest.Received
 	for total := 0; ; {
 		over := false
 		select {
@@ -60,17 +95,15 @@ func listen(ctx context.Context, session *ingest.Session, length time.Duration, 
 		case <-ctx.Done():
 			over = true
 		}
-		stats := session.Stats()
-		if stats.Connections == 0 && stats.Failures > 0 {
-			return errors.New(stats.LastError)
+		for _, e := range ears {
+			if err := e.fault(); err != nil {
+				return fmt.Errorf("%s: %w", e.broker.URL, err)
+			}
+			heard := e.take(time.Now().UnixNano())
+			hear(heard)
+			total += len(heard)
 		}
-		if n := len(stats.Denied); n > 0 && stats.Subscribed == 0 {
-			return fmt.Errorf("the broker grants none of %d topics; check its access list", n)
-		}
-		received = session.Take(received[:0])
-		hear(heardOf(received, time.Now().UnixNano()))
-		session.Ack(received)
-		if total += len(received); progress != nil {
+		if progress != nil {
 			progress(total)
 		}
 		if over {
@@ -79,27 +112,41 @@ func listen(ctx context.Context, session *ingest.Session, length time.Duration, 
 	}
 }
 
-func heardOf(received []ingest.Received, now int64) []proving.Heard {
-	all := make([]proving.Heard, len(received))
-	for i, r := range received {
-		all[i] = proving.Heard{Reading: readingOf(r.Reading), Arrival: now, Stamped: r.Stamped, Retained: r.Retained}
+// fault is why nothing can be heard.
+func (e *ear) fault() error {
+	stats := e.session.Stats()
+	if stats.Connections == 0 && stats.Failures > 0 {
+		return errors.New(stats.LastError)
 	}
+	if n := len(stats.Denied); n > 0 && stats.Subscribed == 0 {
+		return fmt.Errorf("the broker grants none of %d subscriptions; check its access list", n)
+	}
+	return nil
+}
+
+// take takes what came.
+func (e *ear) take(now int64) []proving.Heard {
+	e.buf = e.session.Take(e.buf[:0])
+	all := make([]proving.Heard, len(e.buf))
+	for i, r := range e.buf {
+		all[i] = proving.Heard{Reading: readingOf(r.Reading), Arrival: now, Stamped: r.Stamped, Retained: r.Retained}
+		all[i].Tag = e.tags[r.Tag]
+	}
+	e.session.Ack(e.buf)
 	return all
 }
 
-// refusedOf are the messages of each tag that came to nothing.
-func refusedOf(s *site.Site, stats ingest.Stats) [][]proving.Refused {
-	all := make([][]proving.Refused, len(s.Tags))
-	for i, t := range stats.Tags {
+// refused tells of each tag which messages came to nothing.
+func (e *ear) refused(all [][]proving.Refused) {
+	for i, t := range e.session.Stats().Tags {
 		for _, reason := range ingest.Reasons() {
 			if n := t.Refused[reason]; n > 0 {
 				r := proving.Refused{Reason: reason.String(), Count: n}
 				if t.Last != nil && t.Last.Reason == reason {
 					r.Last = strings.TrimPrefix(t.Last.Error(), fmt.Sprintf("tag %q: ", t.Last.Tag))
 				}
-				all[i] = append(all[i], r)
+				all[e.tags[i]] = append(all[e.tags[i]], r)
 			}
 		}
 	}
-	return all
 }

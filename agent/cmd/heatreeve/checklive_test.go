@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"log/slog"
 	"os"
 	"path/filepath"
 	"strings"
@@ -66,6 +67,15 @@ func TestCheckLive(t *testing.T) {
 		if !strings.Contains(strings.Join(strings.Fields(out), " "), want) {
 			t.Errorf("wrong: no %q in\n%s", want, out)
 		}
+	}
+	quiet, err := demo.StartBroker(slog.New(slog.DiscardHandler))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer quiet.Close()
+	status, out, errs = check(append(address, "\nfluids:", "\nbrokers: {air: {url: \""+quiet.URL()+"\"}}\n\nfluids:", "topic: creamery/air/TT-402,", "broker: air, topic: creamery/air/TT-402,")...)
+	if status != exitFailed || !strings.Contains(out, "FAULT TT-402: no message") || !strings.Contains(out, "hot-water: 64") || strings.Contains(out, "FAULT TT-401") {
+		t.Errorf("a tag on another broker: status %d, %s\n%s", status, errs, out)
 	}
 	if status, _, errs := check("mqtt://127.0.0.1:1883", "mqtt://127.0.0.1:1"); status != exitFailed || !strings.Contains(errs, "connection refused") {
 		t.Errorf("no broker: status %d, %q", status, errs)
