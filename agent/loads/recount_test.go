@@ -14,6 +14,7 @@ type recount struct {
 	cfg      Config
 	readings [][]Reading // of each tag, by stamp
 	from, to int64       // grid points
+	aside    map[Reading]bool
 }
 
 // held is the newest reading of the tag at g.
@@ -59,7 +60,7 @@ func (o *recount) column(src Source) (all []known) {
 		tag := &o.cfg.Tags[src.Tag]
 		r, has := o.held(src.Tag, g)
 		if step := r.At - before.At; has && step > 0 {
-			if before.At != 0 && step < tag.MaxAge && !isBad(before) && !isBad(r) {
+			if before.At != 0 && step < tag.MaxAge && !isBad(before) && !isBad(r) && !o.aside[before] && !o.aside[r] {
 				n = min(n+1, 16)
 				square += ((r.Value-before.Value)*(r.Value-before.Value) - square) / n
 				d := (r.Value - before.Value) * float64(step) / 1e9

@@ -166,11 +166,16 @@ func delivered(t *testing.T, r *rand.Rand, cfg Config, readings []Reading, end i
 // recount of all readings books them that keeps no state: each time to the nanosecond, and
 // heat, what lasts of its uncertainty and what does not, and what is compared with a
 // witness, minute by minute.
-func TestRecount(t *testing.T) {
+func TestRecount(t *testing.T) { recounted(t, anyPlant) }
+
+// So are those whose signals are tested, by tests that look at all readings at once.
+func TestRecountScreened(t *testing.T) { recounted(t, screenedPlant) }
+
+func recounted(t *testing.T, draw func(*rand.Rand) Config) {
 	var seen Minute
 	for seed := range uint64(200) {
 		r := rand.New(rand.NewPCG(seed, 3))
-		cfg := anyPlant(r)
+		cfg := draw(r)
 		length, rest := int64(600e9), int64(900e9)
 		if cfg.Grid < second {
 			length, rest = 120e9, 200e9
@@ -181,6 +186,7 @@ func TestRecount(t *testing.T) {
 		for _, x := range readings {
 			o.readings[x.Tag] = append(o.readings[x.Tag], x)
 		}
+		o.screen()
 		minutes, s := delivered(t, r, cfg, readings, o.to)
 		for i, l := range s.Loads {
 			want := o.account(i)

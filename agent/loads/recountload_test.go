@@ -33,6 +33,8 @@ func (o *recount) figures(load int) []instant {
 	if counted {
 		alive = o.counts(s.Flow.Tag)
 	}
+	other := [3][]bool{o.disagrees(s.Flow), o.disagrees(s.Inlet), o.disagrees(s.Outlet)}
+	pump := o.column(o.cfg.Loads[load].Running)
 	points := make([]instant, len(flows))
 	for i := range points {
 		p := &points[i]
@@ -46,14 +48,15 @@ func (o *recount) figures(load int) []instant {
 		case counted && !alive[i] || !counted && !flows[i].usable:
 			p.gap = true
 		case !counted && math.Abs(m) <= s.IdleBelow:
-			p.figure, p.idle, p.uncertain = true, true, isUncertain(flows[i].Reading)
+			p.figure, p.idle, p.uncertain = true, true, isUncertain(flows[i].Reading) || other[0][i]
 		case m < 0:
 		case !ins[i].usable || !outs[i].usable:
 			p.gap = true
 		case max(ins[i].Value, outs[i].Value) > liquid.hi-s.Margin:
 		default:
 			p.figure = true
-			p.uncertain = !counted && isUncertain(flows[i].Reading) || isUncertain(ins[i].Reading) || isUncertain(outs[i].Reading)
+			p.uncertain = !counted && isUncertain(flows[i].Reading) || isUncertain(ins[i].Reading) || isUncertain(outs[i].Reading) || other[0][i] || other[1][i] || other[2][i] ||
+				o.cfg.Loads[load].HasRunning && pump[i].usable && pump[i].Value == 0 && m*m > 4*o.squared(s.Flow, flows[i])
 			o.work(p, s, m, flows[i], ins[i], outs[i])
 		}
 	}
