@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"sync/atomic"
+	"time"
 )
 
 // maxPacket is the longest body of an inbound packet: topic with its length,
@@ -21,7 +22,7 @@ const maxPacket = 2 + maxTopic + 2 + MaxPayload + 1
 //
 // The library probes a connection on which it sees nothing, and would take one on which
 // the answer comes behind many messages, or a long one, for dead. So whatever comes of a
-// message answers the probe too.
+// message answers the probe too. But a message that never ends must not keep the connection.
 type inflow struct {
 	r       *bufio.Reader
 	deliver func(*delivery)
@@ -33,9 +34,11 @@ type inflow struct {
 	taking  bool     // a message comes, with this first byte and so many bytes of body
 	first   byte
 	size    int
-	long    []byte      // what has come of it, where it does not fit the buffer of the reader
-	rest    int         // bytes of a message delivered that are to be left out
-	probed  atomic.Bool // the library waits for an answer
+	long    []byte        // what has come of it, where it does not fit the buffer of the reader
+	rest    int           // bytes of a message delivered that are to be left out
+	since   time.Time     // when the message began
+	within  time.Duration // that a message may take; 0: any time
+	probed  atomic.Bool   // the library waits for an answer
 	room    [5]byte
 	head    []byte // of the packet, yet to be passed on
 	body    int    // bytes to pass on after it
@@ -70,6 +73,8 @@ const ( // packet types: MQTT 3.1.1, table 2.1
 // next takes a message, or the fixed header of another packet.
 func (f *inflow) next() error {
 	switch {
+	case (f.rest > 0 || f.taking) && f.within > 0 && time.Since(f.since) > f.within:
+		return fmt.Errorf("message of %d bytes has not come to its end within %v", f.size, f.within)
 	case f.rest > 0:
 		return f.skip()
 	case f.taking:
@@ -85,6 +90,7 @@ func (f *inflow) next() error {
 		return err
 	case first>>4 == publish && f.begun:
 		f.taking, f.first, f.size = true, first, length
+		f.since = time.Now()
 		return f.take()
 	case first>>4 == puback && f.begun && length == 2 && f.confirm != nil:
 		if ours, err := f.confirmed(); ours || err != nil {

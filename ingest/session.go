@@ -178,10 +178,14 @@ func (s *Session) open(ctx context.Context) (net.Conn, error) {
 		l.in.most = maxPacket - MaxPayload + sparkplug.MaxPayload
 	}
 	l.in.confirm = s.outbox.confirm
+	l.in.within = messageTimes * s.o.ConnectTimeout
 	s.outbox.open(l)
 	s.link.Store(l)
 	return l, nil
 }
+
+// messageTimes bounds the time that one message may take, in connect timeouts.
+const messageTimes = 12
 
 // receive handles one message, in the goroutine that reads the connection it came
 // by, and in order.
