@@ -31,12 +31,12 @@ func TestMain(m *testing.M) {
 func numbered(n uint64) Batch {
 	at := int64(n) * second
 	b := Batch{
-		Beats:     []Beat{{Through: at, Readings: []Reading{{Tag: 1, At: at, Value: float64(n)}}}},
-		Minutes:   []Minute{{Load: 1, Start: at * 60, Given: float64(n), Duty: float64(n)}},
-		Registers: []Register{{Load: 1, Given: float64(n * (n + 1) / 2)}},
+		Beats:     []Beat{{Through: at, Readings: []Reading{{Tag: 1, At: at, Value: float64(n), Mark: markNumber(n)}}}},
+		Minutes:   []Minute{{Load: 1, Start: at * 60, Given: float64(n), Duty: float64(n), Uncertain: float64(n % 3)}},
+		Registers: []Register{{Load: 1, Given: float64(n * (n + 1) / 2), Uncertain: float64(n)}},
 	}
 	for tag := range uint32(n % 50) { // to make the batches differ in size
-		b.Beats[0].Readings = append(b.Beats[0].Readings, Reading{Tag: 2 + tag, At: at, Value: math.Sqrt(float64(n))})
+		b.Beats[0].Readings = append(b.Beats[0].Readings, Reading{Tag: 2 + tag, At: at, Value: math.Sqrt(float64(n)), Mark: markNumber(n / 5)})
 	}
 	if e, ok := eventOf(n); ok {
 		b.Events = []Event{e}
@@ -49,6 +49,9 @@ func numbered(n uint64) Batch {
 	}
 	return b
 }
+
+// markNumber is the mark of the reading in batch n: three of thirteen have one.
+func markNumber(n uint64) uint8 { return []uint8{0, 65, 65, 130, 12: 0}[n%13] }
 
 // eventOf is the event in batch n: every eleventh begins one, which the third after that ends.
 func eventOf(n uint64) (e Event, ok bool) {
@@ -176,6 +179,7 @@ func TestKill(t *testing.T) {
 		}
 		last = n
 		testNumbered(t, s, n)
+		testMarks(t, s, n)
 		testEvents(t, s, n)
 		testSites(t, s, n)
 		if err := s.Close(); err != nil {
@@ -248,6 +252,25 @@ func testNumbered(t *testing.T, s *Store, n uint64) {
 	registers, err := s.Registers()
 	if want := float64(n * (n + 1) / 2); err != nil || len(registers) != 1 || registers[0].Given != want {
 		t.Errorf("Registers() = %v, %v; want one that is %v", registers, err, want)
+	}
+}
+
+// testMarks compares the marks and the uncertain time that are there with those of their
+// numbers, up to n; histories of earlier layouts have none.
+func testMarks(t *testing.T, s *Store, n uint64) {
+	t.Helper()
+	for _, r := range drain(t, s.Readings(1, 0, math.MaxInt64)) {
+		if want := markNumber(uint64(r.Value)); r.Mark != want {
+			t.Fatalf("reading %+v, want mark %d", r, want)
+		}
+	}
+	for _, m := range drain(t, s.Minutes(1, 0, math.MaxInt64)) {
+		if want := float64(uint64(m.Duty) % 3); m.Uncertain != want {
+			t.Fatalf("minute %+v, want %v uncertain", m, want)
+		}
+	}
+	if all, err := s.Registers(); err != nil || len(all) != 1 || all[0].Uncertain != float64(n) {
+		t.Errorf("registers %+v, %v; want %d uncertain", all, err, n)
 	}
 }
 

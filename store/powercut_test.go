@@ -176,10 +176,11 @@ func TestPowerCut(t *testing.T) {
 	})
 }
 
-// testAll is testNumbered, and the events.
+// testAll is testNumbered, with the marks and the events.
 func testAll(t *testing.T, s *Store, n uint64) {
 	t.Helper()
 	testNumbered(t, s, n)
+	testMarks(t, s, n)
 	testEvents(t, s, n)
 }
 
@@ -190,6 +191,7 @@ func testEnd(t *testing.T, s *Store, n uint64) {
 	if last, gaps := testRun(t, s, 0); last != float64(n) || gaps != 0 {
 		t.Errorf("readings end with %v, with %d gaps; want %d", last, gaps, n)
 	}
+	testMarks(t, s, n)
 	registers, err := s.Registers()
 	if want := float64(n * (n + 1) / 2); err != nil || len(registers) != 1 || registers[0].Given != want {
 		t.Errorf("Registers() = %v, %v; want one that is %v", registers, err, want)

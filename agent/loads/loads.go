@@ -26,6 +26,15 @@
 // Over a period each part adds up as it stands. What changes from reading to reading is
 // told by the differences between them, and adds up as variances do.
 //
+// A reading may be marked as uncertain or bad, by its source or by a test. An uncertain one is
+// used: its figures carry the mark, and their time is counted as uncertain within the measured.
+// From a bad one on its tag has no value, until there is a better one: loads that need it have
+// no figure, as where data are missing, and a bridge works over that; what is in a hold is
+// not known any more, a fitted rate has no point there, a heartbeat is none, and of a tag that
+// reports by exception nothing that stood before does. A counter counts on: a bad count is
+// none, and the next tells what has passed since the last good one, for a load as for a
+// witness, unless the bad one says that the register may have stood still.
+//
 // Instants and spans are int64 nanoseconds (Unix time); temperatures K,
 // pressures absolute Pa, mass flow kg/s, duty W, heat J.
 package loads
