@@ -20,6 +20,7 @@ var metrics = map[string][]string{
 	"heatreeve_load_coverage_ratio":           {"load", "window"},
 	"heatreeve_load_duty_mean_watts":          {"load", "window"},
 	"heatreeve_load_expected_duty_watts":      {"load"},
+	"heatreeve_load_quality":                  {"load", "quality"},
 	"heatreeve_load_time_seconds_total":       {"load", "kind"},
 	"heatreeve_load_verdict":                  {"load", "verdict"},
 	"heatreeve_tag_max_age_seconds":           {"tag"},
@@ -108,7 +109,7 @@ func checkRules(t *testing.T, file string) {
 			}
 		}
 	}
-	want := []string{"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveCoverageLow", "HeatreeveDutyOffDesign", "HeatreeveHistoryFailing", "HeatreeveLoadBlind", "HeatreeveTagNeverRead", "HeatreeveTagStale"}
+	want := []string{"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveCoverageLow", "HeatreeveDutyOffDesign", "HeatreeveHistoryFailing", "HeatreeveLoadBlind", "HeatreeveLoadUncertain", "HeatreeveTagNeverRead", "HeatreeveTagStale"}
 	if got := slices.Sorted(maps.Keys(told)); !slices.Equal(got, want) {
 		t.Errorf("alerts %q; want %q", got, want)
 	}
