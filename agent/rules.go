@@ -80,12 +80,19 @@ func named(h hash.Hash, tags []loads.Tag, sources []*loads.Source) {
 	for _, src := range sources {
 		if src.Tag >= 0 {
 			namedTag(h, tags, src.Tag)
-			if t := &tags[src.Tag]; t.HasBeside {
-				namedTag(h, tags, t.Beside)
+			for i := range tags {
+				if standBeside(tags, i, src.Tag) {
+					namedTag(h, tags, i)
+				}
 			}
 		}
 		src.Tag = min(src.Tag, 0)
 	}
+}
+
+// standBeside reports whether either of two tags names the other as the sensor beside it.
+func standBeside(tags []loads.Tag, i, j int) bool {
+	return tags[i].HasBeside && tags[i].Beside == j || tags[j].HasBeside && tags[j].Beside == i
 }
 
 // namedTag writes a tag, and that of its source's signs of life.

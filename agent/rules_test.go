@@ -89,10 +89,13 @@ func TestRulesOfLoad(t *testing.T) {
 		"a sign of life":    func(c *loads.Config) { c.Tags[1].MaxAge = 7 },
 		"a test":            func(c *loads.Config) { c.Tags[2].Screen.Fastest = 2 },
 		"a sensor beside":   func(c *loads.Config) { c.Tags[3].MaxAge = 7 },
-		"a pump":            func(c *loads.Config) { c.Loads[0].HasRunning = true },
-		"a witness":         func(c *loads.Config) { c.Loads[0].HasWitness = true },
-		"another tag":       func(c *loads.Config) { c.Loads[0].Stream.Inlet.Tag = 3 },
-		"the kind of load":  func(c *loads.Config) { c.Loads[0].Vessel = c.Loads[1].Vessel },
+		"a sensor that names its tag": func(c *loads.Config) {
+			c.Tags = append(c.Tags, loads.Tag{Name: "TI-B", Beside: 2, HasBeside: true})
+		},
+		"a pump":           func(c *loads.Config) { c.Loads[0].HasRunning = true },
+		"a witness":        func(c *loads.Config) { c.Loads[0].HasWitness = true },
+		"another tag":      func(c *loads.Config) { c.Loads[0].Stream.Inlet.Tag = 3 },
+		"the kind of load": func(c *loads.Config) { c.Loads[0].Vessel = c.Loads[1].Vessel },
 	} {
 		if of(change) == same {
 			t.Errorf("%s does not change the rules", name)

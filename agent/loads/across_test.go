@@ -164,6 +164,9 @@ func TestScreened(t *testing.T) {
 // What cannot be tested is said.
 func TestCheckOfTestsAcrossTags(t *testing.T) {
 	for want, change := range map[string]func(*Config){
+		"counter whose readings are tested": func(c *Config) {
+			c.Tags[inlet].Counter, c.Tags[inlet].Screen = &Counter{Each: true}, &screen.Limits{Spikes: true}
+		},
 		"sensor beside it has index 9": func(c *Config) { c.Tags[inlet].Beside, c.Tags[inlet].HasBeside = 9, true },
 		"sensor beside it has index 1": func(c *Config) { c.Tags[inlet].Beside, c.Tags[inlet].HasBeside = 1, true },
 		"running: ":                    func(c *Config) { c.Loads[0].Running, c.Loads[0].HasRunning = Constant(1), true },

@@ -32,6 +32,9 @@ func (c *Config) checkTag(i int) error {
 	if n := t.Counter; n != nil && !(positive(n.Modulus) && positive(n.Largest)) {
 		return fmt.Errorf("counter that rolls over at %g and counts at most %g a second: both must be finite and not negative", n.Modulus, n.Largest)
 	}
+	if t.Counter != nil && t.Screen != nil {
+		return errors.New("counter whose readings are tested: what it rises by is bounded by its largest rate")
+	}
 	if t.HasBeside {
 		if j := t.Beside; j < 0 || j >= len(c.Tags) || j == i || t.Counter != nil || c.Tags[j].Counter != nil {
 			return fmt.Errorf("sensor beside it has index %d: another tag that is no counter is wanted, beside one that is none", j)

@@ -162,28 +162,37 @@ func (e *Engine) counting(load int, g int64) bool {
 	i := e.loads[load].terms.counter
 	t, tag := &e.tags[i], &e.cfg.Tags[i]
 	switch {
-	case t.Held.bad() && (breaks(t.Held.Mark) || t.Count.At == 0):
+	case t.Held.bad() && (breaks(t.Held.Mark) || g >= e.unread(i)):
 		return false
 	case tag.OnChange:
 		return t.standing == holds
-	case t.Held.bad():
-		return g-t.Count.At < tag.MaxAge
 	}
-	return t.Held.Has && g-t.Held.At < tag.MaxAge
+	return t.Held.bad() || t.Held.Has && g-t.Held.At < tag.MaxAge
+}
+
+// unread returns until when a counter whose newest reading is bad stands by what it has told
+// before, by a count or by its silence.
+func (e *Engine) unread(tag int) int64 {
+	c := &e.tags[tag].Count
+	switch {
+	case c.At == 0:
+		return 0
+	case e.cfg.Tags[tag].OnChange:
+		return after(c.To, e.cfg.Tags[tag].MaxAge)
+	}
+	return after(c.At, e.cfg.Tags[tag].MaxAge)
 }
 
 // uncounted marks f where the newest reading of the counter of the flow is bad, and returns
 // false where the count before that does not stand any more.
 func (e *Engine) uncounted(load int, f *Figure) bool {
-	t, tag := &e.tags[e.loads[load].terms.counter], &e.cfg.Tags[e.loads[load].terms.counter]
+	i := e.loads[load].terms.counter
 	if e.counting(load, f.At) {
-		if !tag.OnChange {
-			f.Until = min(f.Until, after(t.Count.At, tag.MaxAge))
-		}
+		f.Until = min(f.Until, e.unread(i))
 		return true
 	}
-	f.mark(t.Held.Mark, tag.Name)
-	*f = f.unusable(tag.Name)
+	f.mark(e.tags[i].Held.Mark, e.cfg.Tags[i].Name)
+	*f = f.unusable(e.cfg.Tags[i].Name)
 	return false
 }
 

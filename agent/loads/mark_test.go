@@ -200,3 +200,27 @@ func TestUncertainCount(t *testing.T) {
 		t.Errorf("%d ns uncertain, want 40 s", l.Uncertain)
 	}
 }
+
+// A register that reports on change stands for as long as its silence would, once it was not
+// read: what its source's signs of life tell is not that it has a value.
+func TestBadCountOfALivingSource(t *testing.T) {
+	cfg := countingPlant()
+	cfg.Tags[flow].OnChange, cfg.Tags[flow].Alive = true, alive
+	cfg.Tags = append(cfg.Tags, Tag{Name: "PLC", MaxAge: lifespan * second})
+	e := engine(t, cfg)
+	for s := 0.0; s <= hours; s += 10 {
+		all := append(beating(s, s), temps(s, 350, 330)...)
+		switch s {
+		case 0, 10:
+			all = append(all, counts(s, 100+s)...)
+		case 20:
+			all = append(all, marked(flow, s, 0, quality.NoValue)...)
+		}
+		e.Advance(Beat{all, through(s)}, nil)
+		if l := e.Snapshot().Loads[0]; l.Undecided > cfg.Tags[flow].MaxAge {
+			t.Fatalf("%g s: %d s are undecided", s, l.Undecided/second)
+		}
+	}
+	accounted(t, e, 10, 0, int64(hours)-10, 0)
+	checkFigure(t, e, BadReading, `tag "QT" is bad: no-value`)
+}

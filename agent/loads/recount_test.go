@@ -146,10 +146,22 @@ func (o *recount) counts(tag int) (alive []bool) {
 			is = false
 		case !o.cfg.Tags[tag].OnChange:
 			is = g-good.At < o.cfg.Tags[tag].MaxAge
+		default:
+			is = is && g-o.toldLast(tag, g) < o.cfg.Tags[tag].MaxAge
 		}
 		alive = append(alive, is)
 	}
 	return alive
+}
+
+// toldLast is the grid point up to which a register has told at g.
+func (o *recount) toldLast(tag int, g int64) (to int64) {
+	for _, k := range o.tells(tag, largestRate) {
+		if k.to <= g {
+			to = k.to
+		}
+	}
+	return to
 }
 
 // lasting is the standard uncertainty of a reading by what lasts: its accuracy, and what
