@@ -49,7 +49,7 @@ func checkFigures(t *testing.T, s *Site) {
 		t.Fatalf("incomplete: %+v", s)
 	}
 	figures := []float64{s.Barometer}
-	for _, tag := range s.Tags {
+	for i, tag := range s.Tags {
 		a := tag.Accuracy
 		figures = append(figures, tag.Scale, tag.Offset, a.Abs, a.Rel, a.Zero, tag.Resolution, tag.Deadband)
 		if c := tag.Counter; c != nil {
@@ -60,6 +60,15 @@ func checkFigures(t *testing.T, s *Site) {
 			if g.Loop == (g.R0 > 0) && !g.Root || g.Root && tag.Min != 0 || g.Root && !g.Loop && !(g.FullAt > 0) || g.CutOff < 0 || g.Lead < 0 || tag.Counter != nil {
 				t.Errorf("tag %q: signal %+v", tag.Name, g)
 			}
+		}
+		if x := tag.Screen; x != nil {
+			figures = append(figures, x.Low, x.High, x.Fastest)
+			if x.Low > x.High || x.Fastest < 0 || x.Stuck < 0 || tag.Counter != nil || x.Spikes && tag.Resolution <= 0 {
+				t.Errorf("tag %q: tests %+v", tag.Name, x)
+			}
+		}
+		if tag.HasBeside && (tag.Beside == i || s.Tags[tag.Beside].Unit.Dimension != tag.Unit.Dimension || tag.Counter != nil) {
+			t.Errorf("tag %q: beside %d", tag.Name, tag.Beside)
 		}
 		if q := tag.Quality; q != nil && (q.At == "" || q.Code == "" && len(q.Good)+len(q.Uncertain)+len(q.Bad) == 0) || tag.Liveness == nil && tag.Numbers.Symbol == "" {
 			t.Errorf("tag %q: quality %+v, numbers in %+v", tag.Name, q, tag.Numbers)
