@@ -3,6 +3,7 @@ package agent
 import (
 	"log/slog"
 	"sync"
+	"sync/atomic"
 	"time"
 )
 
@@ -19,7 +20,7 @@ const (
 )
 
 // stepless is the system's clock, but for what it is set by: then it goes on as it was,
-// by the time that passes (CLOCK_MONOTONIC), until the new setting has stood for a
+// by the time that passes, until the new setting has stood for a
 // while. Arrivals are stamped by it, so a clock that is set forward opens no gap
 // where there was none, and one that is set back does not make readings late, unless
 // it stays so. A step is counted and logged. Soon after the start it is followed at
@@ -51,8 +52,23 @@ func newStepless(wall func() time.Time, elapsed func() time.Duration, log *slog.
 
 // systemClock is the clock of this machine.
 func systemClock(log *slog.Logger) *stepless {
+	return newStepless(func() time.Time { return time.Now().Round(0) }, elapsed(), log)
+}
+
+// elapsed returns a clock that nobody sets. It goes on while the machine sleeps, where that
+// can be had: after waking, the right time must not be taken for a new setting.
+func elapsed() func() time.Duration {
 	start := time.Now()
-	return newStepless(func() time.Time { return time.Now().Round(0) }, func() time.Duration { return time.Since(start) }, log)
+	if _, ok := boottime(); !ok {
+		return func() time.Duration { return time.Since(start) }
+	}
+	var last atomic.Int64
+	return func() time.Duration {
+		if d, ok := boottime(); ok {
+			last.Store(int64(d))
+		}
+		return time.Duration(last.Load())
+	}
 }
 
 // Now returns the present.

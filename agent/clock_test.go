@@ -305,3 +305,33 @@ func TestStartWaitsForTheClock(t *testing.T) {
 		})
 	}
 }
+
+// A machine that slept shows the right time when it wakes: nobody has set its clock.
+func TestSleepIsNoSetting(t *testing.T) {
+	m := newMachine()
+	before := m.Now()
+	m.pass(settling + 8*time.Hour) // both clocks go on in a sleep
+	if got := m.Now().Sub(before); got != settling+8*time.Hour {
+		t.Errorf("%v have passed, want all", got)
+	}
+	if steps, _ := m.state(); steps != 0 {
+		t.Errorf("%d steps, want none", steps)
+	}
+}
+
+// The machine's own clock of what has elapsed goes with time, and never back.
+func TestElapsed(t *testing.T) {
+	clock := elapsed()
+	begun, last := time.Now(), clock()
+	first := last
+	for time.Since(begun) < 20*time.Millisecond {
+		now := clock()
+		if now < last {
+			t.Fatalf("%v after %v", now, last)
+		}
+		last = now
+	}
+	if got := last - first; got < 19*time.Millisecond || got > 10*time.Second {
+		t.Errorf("%v elapsed in about 20 ms", got)
+	}
+}
