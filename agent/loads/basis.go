@@ -142,7 +142,8 @@ func (e *Engine) streamBasis(b *Basis, load int) {
 		return
 	}
 	s := steps{again: true}
-	if f := e.stream(load, g, &s); !f.Measured() || f.Idle {
+	var f Figure
+	if e.stream(load, g, &f, &s); !f.Measured() || f.Idle {
 		return
 	}
 	rate := 1.0

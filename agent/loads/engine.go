@@ -139,8 +139,8 @@ func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 
 // file takes in readings.
 func (e *Engine) file(readings []Reading) {
-	for _, r := range readings {
-		e.take(r)
+	for i := range readings {
+		e.take(&readings[i])
 	}
 }
 
@@ -198,7 +198,7 @@ func (e *Engine) booked() int64 {
 }
 
 // take files one reading, and counts what became of it.
-func (e *Engine) take(r Reading) {
+func (e *Engine) take(r *Reading) {
 	grid := e.cfg.Grid
 	if e.cfg.Tags[r.Tag].adds() {
 		grid = 1 // every one of them waits
@@ -290,7 +290,8 @@ func (e *Engine) evaluateAll(g int64) bool {
 	for i := range e.loads {
 		l := &e.loads[i]
 		if !l.fresh || g >= l.figure.Until || l.Hold.holds() {
-			l.figure, l.fresh = e.evaluate(i, g), true
+			e.evaluate(i, g, &l.figure)
+			l.fresh = true
 		}
 		l.figure.At = g
 		if l.Counted != nil {

@@ -21,73 +21,77 @@ func (h *held) bad() bool { return h.Mark.Quality() == quality.Bad }
 
 // evaluate works the figure of a load at the grid point g from the values held
 // then. It depends on nothing else.
-func (e *Engine) evaluate(load int, g int64) Figure {
+func (e *Engine) evaluate(load int, g int64, f *Figure) {
 	if e.cfg.Loads[load].Vessel != nil {
-		return e.vessel(load, g, new(vesselSteps))
+		*f = e.vessel(load, g, new(vesselSteps))
+	} else {
+		e.stream(load, g, f, new(steps))
 	}
-	return e.stream(load, g, new(steps))
 }
 
 // stream is evaluate for a stream; s is left with what the figure was worked from, as far as
 // it came.
-func (e *Engine) stream(load int, g int64, s *steps) Figure {
+func (e *Engine) stream(load int, g int64, f *Figure, s *steps) {
 	q := &e.equations[load]
-	f := Figure{At: g, Until: math.MaxInt64}
+	*f = Figure{At: g, Until: math.MaxInt64}
 	x, d := &s.x, &s.d
-	if !e.flow(load, &f, &x.Flow, &d[PartFlow]) {
-		return f
+	if !e.flow(load, f, &x.Flow, &d[PartFlow]) {
+		return
 	}
 	if e.loads[load].Counted == nil && q.idle(x.Flow) {
 		f.Idle = true
-		return f
+		return
 	}
-	e.pumped(load, &f, s)
+	e.pumped(load, f, s)
 	if x.Flow < 0 {
-		return f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.Flow))
+		*f = f.fail(Reverse, fmt.Sprintf("flow is %.4g of its SI unit, below zero by more than idle_below", x.Flow))
+		return
 	}
-	ok := e.read(&f, q.Inlet, &x.Inlet, &d[PartInlet]) &&
-		e.read(&f, q.Outlet, &x.Outlet, &d[PartOutlet]) &&
-		e.read(&f, q.Pressure, &x.Pressure, &d[PartPressure]) &&
-		e.read(&f, q.OutletPressure, &x.OutletPressure, &d[PartOutletPressure]) &&
-		(q.HumidityKind == 0 || e.read(&f, q.Humidity, &x.Humidity, &d[PartHumidity])) &&
-		(!q.HasCoil || e.read(&f, q.Coil, &x.Coil, new(doubt))) &&
-		(!q.HasPump || e.read(&f, q.Pump, &x.Pump, &d[PartPump])) &&
-		e.delay(load, &f, s)
-	if !ok || !e.rise(load, &f, s) {
-		return f
+	ok := e.read(f, q.Inlet, &x.Inlet, &d[PartInlet]) &&
+		e.read(f, q.Outlet, &x.Outlet, &d[PartOutlet]) &&
+		e.read(f, q.Pressure, &x.Pressure, &d[PartPressure]) &&
+		e.read(f, q.OutletPressure, &x.OutletPressure, &d[PartOutletPressure]) &&
+		(q.HumidityKind == 0 || e.read(f, q.Humidity, &x.Humidity, &d[PartHumidity])) &&
+		(!q.HasCoil || e.read(f, q.Coil, &x.Coil, new(doubt))) &&
+		(!q.HasPump || e.read(f, q.Pump, &x.Pump, &d[PartPump])) &&
+		e.delay(load, f, s)
+	if !ok || !e.rise(load, f, s) {
+		return
 	}
 	if q.OutletPressure == q.Pressure {
 		d[PartOutletPressure] = doubt{} // moves with the inlet's
 	}
-	f = q.figure(f, s)
-	q.storedSpread(&f, s)
-	e.order(load, &f, s)
-	return f
+	q.figure(f, s)
+	q.storedSpread(f, s)
+	e.order(load, f, s)
 }
 
 // idle reports whether nothing is taken to flow.
 func (q *equation) idle(flow float64) bool { return flow == 0 || math.Abs(flow) <= q.IdleBelow }
 
-func (q *equation) figure(f Figure, s *steps) Figure {
+func (q *equation) figure(f *Figure, s *steps) {
 	x := &s.x
 	m, err := q.medium(x)
 	if err != nil {
-		return f.fail(OutOfRange, err.Error())
+		*f = f.fail(OutOfRange, err.Error())
+		return
 	}
 	why, remark := q.phase(&m, x)
 	if why != "" {
-		return f.fail(Saturation, why)
+		*f = f.fail(Saturation, why)
+		return
 	}
 	r := &s.r
 	if *r, err = q.work(&m, x); err != nil {
-		return f.fail(OutOfRange, err.Error())
+		*f = f.fail(OutOfRange, err.Error())
+		return
 	}
-	if err := q.spread(&f, &m, s); err != nil {
-		return f.fail(OutOfRange, err.Error())
+	if err := q.spread(f, &m, s); err != nil {
+		*f = f.fail(OutOfRange, err.Error())
+		return
 	}
 	f.Duty, f.MassFlow, f.Density, f.Remark = r.Duty, r.MassFlow, r.Density, remark
 	f.Inlet, f.Outlet, f.Pressure = x.Inlet, x.Outlet, x.Pressure
-	return f
 }
 
 func (f Figure) fail(why Fault, reason string) Figure {

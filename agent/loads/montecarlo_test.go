@@ -31,8 +31,8 @@ func (o *operating) figure(t *testing.T) Figure {
 	if err != nil {
 		t.Fatal(err)
 	}
-	f := q.figure(Figure{}, &steps{x: o.x, d: o.inputs})
-	if !f.Measured() {
+	var f Figure
+	if q.figure(&f, &steps{x: o.x, d: o.inputs}); !f.Measured() {
 		t.Fatalf("%s: %v (%s)", o.name, f.Fault, f.Reason)
 	}
 	return f

@@ -36,7 +36,7 @@ const steadyAfter = 16
 // age: what came after it is another story. So is what comes beside a bad
 // reading, or after one that was set aside. A difference whose square is beyond all numbers
 // is none, since no mean would come back from it.
-func (s *scatter) observe(before held, next sample, maxAge int64) {
+func (s *scatter) observe(before *held, next *sample, maxAge int64) {
 	if !before.Has || before.bad() || before.Aside || next.bad() || next.At-before.At >= maxAge {
 		return
 	}

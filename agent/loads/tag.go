@@ -120,20 +120,22 @@ func (e *Engine) hold(tag int, g int64) bool {
 		return false
 	}
 	scatters, adds := cfg.scatters(), cfg.adds()
-	for k, s := range t.Pending[:n] {
-		if cfg.Screen != nil && e.aside(tag, &s) {
+	for k := range t.Pending[:n] {
+		s := &t.Pending[k]
+		if cfg.Screen != nil && e.aside(tag, s) {
 			continue
 		}
 		if scatters {
-			t.Scatter.observe(t.Held, s, cfg.MaxAge)
+			t.Scatter.observe(&t.Held, s, cfg.MaxAge)
 		}
 		if adds && k > 0 {
 			s.Value += t.Held.Value
 			s.Mark = quality.Worse(s.Mark, t.Held.Mark)
 		}
-		t.Held = held{At: s.At, Value: s.Value, Has: true, Mark: s.Mark}
+		h := &t.Held
+		h.At, h.Value, h.Has, h.Mark, h.Aside = s.At, s.Value, true, s.Mark, false
 	}
-	t.Pending = slices.Delete(t.Pending, 0, n)
+	t.Pending = t.Pending[:copy(t.Pending, t.Pending[n:])]
 	return true
 }
 

@@ -184,6 +184,13 @@ func (q *equation) heat(m *medium, x *State, in, out *thermo.Balance) (density, 
 // mass is the mass flow, kg/s, that the meter shows as flow where the fluid in it has the
 // density.
 func (q *equation) mass(m *medium, flow, density float64) float64 {
+	if q.FlowKind == VolumeFlow && q.CalibratedAt == 0 { // most are; the rest is no part of each duty
+		return flow * density
+	}
+	return q.otherMass(m, flow, density)
+}
+
+func (q *equation) otherMass(m *medium, flow, density float64) float64 {
 	switch q.FlowKind {
 	case VolumeFlow:
 		flow *= density
