@@ -126,10 +126,10 @@ loads:
   annex: {stream: {fluid: water, flow: FT2, inlet: TI2, outlet: TO2, pressure: 4 bar, gives: heat}}
 `
 
-// hurried is a clock ten times as fast as the machine's.
-func hurried() func() time.Time {
+// hurried is a clock so many times as fast as the machine's.
+func hurried(times time.Duration) func() time.Time {
 	begun := time.Now()
-	return func() time.Time { return begun.Add(10 * time.Since(begun)) }
+	return func() time.Time { return begun.Add(times * time.Since(begun)) }
 }
 
 // plantOn publishes the three readings of a load to a broker, ten times a second, until
@@ -177,7 +177,7 @@ func TestLossOfOneBrokerBlindsItsLoadsOnly(t *testing.T) {
 	defer road.Close()
 	s := parsed(t, strings.NewReplacer("MAIN", brokers[0].URL(), "ANNEX", "mqtt://"+road.Address()).Replace(twoBrokers))
 	s.Timing.Beat = 100 * time.Millisecond // of the machine's clock
-	now := hurried()
+	now := hurried(10)
 	snapshots := make(chan *view.Snapshot, 1)
 	a, err := New(s, Options{Data: t.TempDir(), Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Now: now, Ready: func(net.Addr) {},
 		Beat: func(v *view.Snapshot) {

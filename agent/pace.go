@@ -9,7 +9,7 @@ import (
 const (
 	// leastQuiet is how long the session must have been up and silent before the
 	// clock alone moves event time: long enough for a broker to deliver what it
-	// kept for us. A broker that waits for an acknowledgement is silent from one
+	// kept for us, and for a dead link to be found out. A broker that waits for an acknowledgement is silent from one
 	// commit to the next, so quiet is longer than that.
 	leastQuiet   = 15 * time.Second
 	beyondCommit = 5 * time.Second

@@ -12,10 +12,12 @@ import (
 
 // Defaults of [Options].
 const (
-	DefaultBuffer         = 65536
-	DefaultOutbox         = 4096
-	DefaultMaxBackoff     = 30 * time.Second
-	DefaultKeepAlive      = 15 * time.Second
+	DefaultBuffer     = 65536
+	DefaultOutbox     = 4096
+	DefaultMaxBackoff = 30 * time.Second
+	// DefaultKeepAlive with DefaultPingTimeout finds a dead link within 12.5 s, as the
+	// library rounds them: before a silence of 15 s is taken for one of the plant.
+	DefaultKeepAlive      = 5 * time.Second
 	DefaultPingTimeout    = 5 * time.Second
 	DefaultConnectTimeout = 10 * time.Second
 )

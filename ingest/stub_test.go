@@ -126,7 +126,7 @@ func TestLoweredQoS(t *testing.T) {
 }
 
 // The client must give itself as it should: fixed id, the session kept,
-// MQTT 3.1.1, keep-alive 15 s, QoS 1.
+// MQTT 3.1.1, keep-alive 5 s, QoS 1.
 func TestWhatIsSent(t *testing.T) {
 	var connect atomic.Pointer[packets.ConnectPacket]
 	var subscribe atomic.Pointer[packets.SubscribePacket]
@@ -145,7 +145,7 @@ func TestWhatIsSent(t *testing.T) {
 	s, _, _ := start(t, []Tag{number("a"), number("a")}, o)
 	ready(t, s)
 	c, sub := connect.Load(), subscribe.Load()
-	if c.CleanSession || c.ClientIdentifier != "brackwater" || c.Keepalive != 15 || c.ProtocolVersion != 4 || c.Username != "ann" || string(c.Password) != "pw" {
+	if c.CleanSession || c.ClientIdentifier != "brackwater" || c.Keepalive != 5 || c.ProtocolVersion != 4 || c.Username != "ann" || string(c.Password) != "pw" {
 		t.Errorf("connected with %v", c)
 	}
 	if len(sub.Topics) != 1 || sub.Topics[0] != "plant/a" || sub.Qoss[0] != 1 {
