@@ -90,7 +90,8 @@ func (q *equation) figure(f *Figure, s *steps) {
 		*f = f.fail(OutOfRange, err.Error())
 		return
 	}
-	f.Duty, f.MassFlow, f.Density, f.Remark = r.Duty, r.MassFlow, r.Density, remark
+	f.Duty = r.Duty + 0 // never -0: a saved state keeps no sign of it
+	f.MassFlow, f.Density, f.Remark = r.MassFlow, r.Density, remark
 	f.Inlet, f.Outlet, f.Pressure = x.Inlet, x.Outlet, x.Pressure
 }
 
