@@ -39,6 +39,9 @@ type Input struct {
 	Part   Part   // whose share of the uncertainty is its, but for that of a coil
 	Source Source
 	Held   Reading // the newest reading that event time has passed; At is 0 where there is none
+	// Aside says that newer readings were set aside, the newest of them at Held.At, and that
+	// Held has the value from before them.
+	Aside  bool
 	Alive  Reading // the same of the tag that tells whether the source is alive, where it has one
 	Fault  Fault   // why what is held cannot be used
 	Reason string
@@ -223,7 +226,7 @@ func (b *Basis) add(e *Engine, g int64, name string, part Part, src Source) {
 	}
 	in.Accuracy, in.Coarse, in.Scatter = d.accuracy, d.coarse, d.scatter
 	if src.Tag >= 0 {
-		in.Held = e.heldReading(src.Tag)
+		in.Held, in.Aside = e.heldReading(src.Tag), e.tags[src.Tag].Held.Aside
 		if tag := &e.cfg.Tags[src.Tag]; tag.OnChange {
 			in.Alive = e.heldReading(tag.Alive)
 		}

@@ -2,6 +2,7 @@ package working
 
 import (
 	"fmt"
+	"math"
 	"time"
 
 	"heatreeve/agent/loads"
@@ -26,8 +27,12 @@ func (p *page) missing(in *loads.Input) string {
 		return fmt.Sprintf("%s: tag %q has sent nothing", in.Name, tag.Name)
 	}
 	at := func(ns int64) string { return time.Unix(0, ns).In(p.Site.Zone).Format("2006-01-02 15:04:05 -07:00") }
-	last := fmt.Sprintf("%s: tag %q last said %s %s at %s", in.Name, tag.Name, short(payload(tag, in.Held.Value)), tag.Unit.Symbol, at(in.Held.At))
-	if in.Held.Mark != 0 {
+	what := "had no number"
+	if !math.IsNaN(in.Held.Value) {
+		what = fmt.Sprintf("last said %s %s", short(payload(tag, in.Held.Value)), tag.Unit.Symbol)
+	}
+	last := fmt.Sprintf("%s: tag %q %s at %s", in.Name, tag.Name, what, at(in.Held.At))
+	if in.Held.Mark != 0 && in.Fault != loads.BadReading { // whose reason tells the mark
 		last += fmt.Sprintf(", which is %v (%v)", in.Held.Mark.Quality(), in.Held.Mark)
 	}
 	if !tag.OnChange && p.Basis.Figure.At-in.Held.At >= int64(tag.MaxAge) {

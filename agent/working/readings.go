@@ -23,9 +23,17 @@ func (p *page) readings(title string) {
 
 func (p *page) reading(in *loads.Input) {
 	tag, q := &p.Site.Tags[in.Source.Tag], p.quantity(in)
-	x := payload(tag, in.Held.Value)
-	text := strconv.FormatFloat(x, 'f', -1, 64)
-	p.add(Line{Symbol: q.symbol + "'", Words: p.read(in.Name, tag), Value: x, Shown: text, Unit: tag.Unit.Symbol, Reading: p.sample(in.Held, in.Fault)})
+	l := Line{Symbol: q.symbol + "'", Words: p.read(in.Name, tag), Reading: p.sample(in.Held, in.Fault)}
+	if in.Aside {
+		l.Words += ", from before what has been set aside"
+	}
+	if math.IsNaN(in.Held.Value) {
+		l.Words += ", without a number"
+	} else {
+		l.Value, l.Unit = payload(tag, in.Held.Value), tag.Unit.Symbol
+		l.Shown = strconv.FormatFloat(l.Value, 'f', -1, 64)
+	}
+	p.add(l)
 	if in.Alive.At != 0 {
 		p.add(Line{Words: "sign of life of its source", Reading: p.sample(in.Alive, loads.NoFault)})
 	}

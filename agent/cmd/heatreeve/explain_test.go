@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"math"
+	"path/filepath"
 	"regexp"
 	"strconv"
 	"strings"
@@ -12,8 +13,11 @@ import (
 	"time"
 	"unicode/utf8"
 
+	"heatreeve/agent"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
+	"heatreeve/ingest/quality"
+	"heatreeve/store"
 )
 
 // calculator works what is printed between two =, by the rules of school.
@@ -413,5 +417,54 @@ func awaitExplanation(t *testing.T, ended <-chan int, args ...string) string {
 				return text
 			}
 		}
+	}
+}
+
+// hear adds a reading of a tag a second after the end, and lets ten seconds go by.
+func (p *played) hear(t *testing.T, tag string, value float64, m quality.Mark) {
+	t.Helper()
+	db, err := store.Open(filepath.Join(p.data, agent.HistoryFile), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	ids, err := db.Names("tag")
+	if err != nil {
+		t.Fatal(err)
+	}
+	r := store.Reading{Tag: ids[tag], At: p.to.Add(time.Second).UnixNano(), Value: value, Mark: uint8(m), Stamped: true}
+	if err := db.Commit(store.Batch{Beats: []store.Beat{{Through: p.to.Add(10 * time.Second).UnixNano(), Readings: []store.Reading{r}}}}); err != nil {
+		t.Fatal(err)
+	}
+}
+
+// What the source has no number for has none in the working either, as text and as JSON.
+func TestExplainABadReading(t *testing.T) {
+	p := play(t, "brackwater-creamery.yaml", nil)
+	p.hear(t, "FT-201", math.NaN(), quality.NoValue)
+	out := strings.Join(strings.Fields(explain(t, "hot-water", "--data", p.data)), " ")
+	for _, want := range []string{
+		`No duty bad reading: tag "FT-201" is bad: no-value flow: tag "FT-201" had no number at 2026-12-01 10:15:01 +00:00; tag "FT-201" is bad: no-value`,
+		"V' flow, without a number: from FT-201 at 10:15:01.000, 8 s old, bad (no-value), not used: bad reading",
+		"hot-water has no duty: bad reading. It is blind.",
+	} {
+		if !strings.Contains(out, want) {
+			t.Errorf("it does not say %q:\n%s", want, out)
+		}
+	}
+	var w working.Working
+	if text := explain(t, "hot-water", "--data", p.data, "--json"); json.Unmarshal([]byte(text), &w) != nil || w.Fault != "bad reading" || w.Sections[1].Lines[0].Reading.Reason != "no-value" {
+		t.Errorf("as JSON: %s", text)
+	}
+}
+
+// A reading that was set aside is told of where the value before it is used.
+func TestExplainASpike(t *testing.T) {
+	p := play(t, "tarnholt-heat-works.yaml", nil)
+	p.hear(t, "network/supply temperature", 380, quality.None)
+	out := explain(t, "network", "--data", p.data)
+	want := "T1' inlet, from before what has been set aside: 94.969 °C from network/supply temperature at 11:15:01.000, 8 s old, uncertain (spike)"
+	if flat := strings.Join(strings.Fields(out), " "); !strings.Contains(flat, want) || followed(t, out) < 20 {
+		t.Errorf("it does not say %q:\n%s", want, out)
 	}
 }
