@@ -117,8 +117,9 @@ func (e *Engine) use(tag, load int) {
 // Event time never runs back: an earlier Through than the last is ignored.
 func (e *Engine) Advance(b Beat, closed []Minute) []Minute {
 	e.file(b.Readings)
+	was := e.through
 	e.through = max(e.through, b.Through)
-	if e.next == 0 && !e.begin() {
+	if e.next == 0 && !e.begin(was) {
 		return closed
 	}
 	for e.next+e.cfg.Grid <= e.through {
@@ -170,8 +171,9 @@ func (e *Engine) Recall(readings []Reading) {
 // held, event time moves on, and nothing is booked.
 func (e *Engine) Adopt(b Beat) {
 	e.file(b.Readings)
+	was := e.through
 	e.through = max(e.through, b.Through)
-	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin()) && next > e.next {
+	if next := floor(e.through, e.cfg.Grid); (e.next != 0 || e.begin(was)) && next > e.next {
 		for e.next < next {
 			e.arrive(e.next)
 			span := min(e.quiet(e.next), next-e.next)
@@ -239,9 +241,9 @@ func (e *Engine) doubt(tag int, m quality.Mark) {
 const reachBack = 60 * minute
 
 // begin sets the first grid point once event time has reached the earliest
-// reading, at most reachBack before event time; without any reading the accounts
-// begin where event time stands.
-func (e *Engine) begin() bool {
+// reading, at most reachBack before event time or where event time was, if that is
+// earlier; without any reading the accounts begin where event time stands.
+func (e *Engine) begin(was int64) bool {
 	first := int64(math.MaxInt64)
 	for i := range e.tags {
 		if p := e.tags[i].Pending; len(p) > 0 {
@@ -254,8 +256,27 @@ func (e *Engine) begin() bool {
 	if first <= 0 || first > e.through {
 		return false
 	}
-	e.next = ceil(max(first, e.through-reachBack), e.cfg.Grid)
+	back := e.through - reachBack
+	if was > 0 {
+		back = min(back, was)
+	}
+	e.next = ceil(max(first, back), e.cfg.Grid)
+	e.tallyBefore(e.next)
 	return true
+}
+
+// tallyBefore counts as late what the accounts begin too late for: the readings before g,
+// but for the newest of each tag, which is held there.
+func (e *Engine) tallyBefore(g int64) {
+	for i := range e.tags {
+		before := 0
+		for _, s := range e.tags[i].Pending {
+			if s.At <= g {
+				before++
+			}
+		}
+		e.tally[i].Late += uint64(max(0, before-1))
+	}
 }
 
 // arrive brings what the tags hold, and whether it holds, to g.

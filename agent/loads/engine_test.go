@@ -290,6 +290,41 @@ func TestStrayOldStampOpensAnHourAtMost(t *testing.T) {
 	}
 }
 
+// A backlog at the very start, in which event time first waits for a tag that seldom speaks
+// and then leaps by hours, is accounted for from its first reading on.
+func TestLeapAtTheStartLeavesNothingOut(t *testing.T) {
+	e := engine(t, plant(liquid))
+	var backlog []Reading
+	for s := int64(0); s < 3*3600; s += 30 {
+		backlog = append(backlog, at(float64(s), 2, 350, 330)...)
+	}
+	e.Advance(Beat{backlog[:300], through(-5)}, nil)
+	e.Advance(Beat{backlog[300:], through(3 * 3600)}, nil)
+	l := e.Snapshot().Loads[0]
+	if l.Measured != 180*minute || l.Missing != 0 {
+		t.Errorf("measured %d s, missing %d s; want 10800 and 0", l.Measured/second, l.Missing/second)
+	}
+}
+
+// Where the accounts begin after some of the readings, those are counted as late.
+func TestWhatIsBeforeTheBeginningIsCounted(t *testing.T) {
+	e := engine(t, plant(liquid))
+	var backlog []Reading
+	for s := int64(0); s <= 2*3600; s += 30 {
+		backlog = append(backlog, at(float64(s), 2, 350, 330)...)
+	}
+	e.Advance(Beat{backlog, through(2 * 3600)}, nil)
+	s := e.Snapshot()
+	if l := s.Loads[0]; l.Measured != 60*minute || l.Missing != 0 {
+		t.Errorf("measured %d s, missing %d s; want 3600 and 0", l.Measured/second, l.Missing/second)
+	}
+	for i, tag := range s.Tags { // of each, 121 came up to the beginning, where the last of them is held
+		if tag.Late != 120 {
+			t.Errorf("tag %d: %d late; want 120", i, tag.Late)
+		}
+	}
+}
+
 // Many readings for one grid point wait as one, so a burst is no crowd, and the
 // last of them is the one that counts.
 func TestBurstWithinAGridStep(t *testing.T) {
