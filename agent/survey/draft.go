@@ -85,12 +85,14 @@ func (d Draft) tags(w io.Writer) {
 			fmt.Fprintf(w, "  %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
 		}
 	}
-	if len(rest) == 0 {
-		return
+	if len(rest) > 0 {
+		fmt.Fprint(w, "\n  # Nothing tells what these are:\n")
 	}
-	fmt.Fprint(w, "\n  # Nothing tells what these are:\n")
 	for _, s := range rest {
 		fmt.Fprintf(w, "  # %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
+	}
+	for _, hurdle := range Hurdles(d.Topics) {
+		fmt.Fprintf(w, "  # Not read: %s\n", oneLine(hurdle))
 	}
 }
 

@@ -85,6 +85,11 @@ func (g *Guess) scale(s *Signal) {
 func fromNames(s *Signal) Guess {
 	var g Guess
 	for _, name := range names(s) {
+		name, inside, bracketed := inBrackets(name)
+		if bracketed && g.Unit == "" && (g.dimension == 0 || g.dimension == inside.Dimension) {
+			g.Unit, g.dimension, g.Sure = inside.Symbol, inside.Dimension, true
+			g.because(fmt.Sprintf("the name %q has it in brackets", name))
+		}
 		words := split(name)
 		if u, text, ok := unitIn(words); ok && g.Unit == "" && (g.dimension == 0 || g.dimension == u.Dimension) {
 			g.Unit, g.dimension, g.Sure = u.Symbol, u.Dimension, true
@@ -109,17 +114,17 @@ func fromNames(s *Signal) Guess {
 func names(s *Signal) []string {
 	var all []string
 	if s.Metric != "" {
-		all = strings.Split(s.Metric, "/")
+		all = levels(s.Metric)
 		slices.Reverse(all)
 	}
 	for p := s.Value; p != ""; p = parent(p) {
 		if k := key(p); !slices.Contains(valueWords, plain(k)) {
-			all = append(all, k)
+			all = append(all, withoutValue(k))
 		}
 	}
-	levels := strings.Split(s.Topic, "/")
-	slices.Reverse(levels)
-	return append(all, levels[:min(3, len(levels))]...)
+	of := levels(s.Topic)
+	slices.Reverse(of)
+	return append(all, of[:min(3, len(of))]...)
 }
 
 // split parts a name into words in small letters: at signs, and where a small letter

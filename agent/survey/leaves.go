@@ -103,11 +103,18 @@ func key(pointer string) string {
 	return strings.ReplaceAll(strings.ReplaceAll(name, "~1", "/"), "~0", "~")
 }
 
-// list splits a pointer into that of a list and that within each of its elements.
+// whole stands for the list that is all of a message, as in a site file.
+const whole = "whole"
+
+// list splits a pointer into that of a list, "" where there is none, and that within each
+// of its elements.
 func list(pointer string) (samples, within string) {
 	before, after, found := strings.Cut(pointer, "/"+each)
-	if !found {
+	switch {
+	case !found:
 		return "", pointer
+	case before == "":
+		return whole, after
 	}
 	return before, after
 }

@@ -52,6 +52,9 @@ func settle(open []*Signal, taken map[string]bool, name func(*Signal) string) (r
 func tagName(s *Signal, levels int) string {
 	parts := own(s)
 	parts = parts[max(0, len(parts)-levels):]
+	if before, _, ok := inBrackets(parts[len(parts)-1]); ok {
+		parts = append(slices.Clone(parts[:len(parts)-1]), before)
+	}
 	name := strings.Map(func(r rune) rune {
 		if r == '-' || r == '_' || r == '.' || unicode.IsLetter(r) || unicode.IsDigit(r) {
 			return r
@@ -69,14 +72,71 @@ func tagName(s *Signal, levels int) string {
 
 // own are the names that lead to a signal, from the topic's first level on.
 func own(s *Signal) []string {
-	parts := slices.DeleteFunc(strings.Split(s.Topic, "/"), func(level string) bool { return level == "" })
+	parts := slices.DeleteFunc(levels(s.Topic), func(level string) bool { return level == "" })
 	if s.Metric != "" {
-		parts = append(parts, slices.DeleteFunc(strings.Split(s.Metric, "/"), func(level string) bool { return level == "" || slices.Contains(valueWords, plain(level)) })...)
+		parts = append(parts, slices.DeleteFunc(levels(s.Metric), func(level string) bool { return level == "" || slices.Contains(valueWords, plain(level)) })...)
 	}
 	for _, token := range strings.Split(s.Value, "/")[1:] {
 		if !slices.Contains(valueWords, plain(token)) && token != "" {
-			parts = append(parts, key("/"+token))
+			parts = append(parts, withoutValue(key("/"+token)))
 		}
 	}
 	return parts
+}
+
+// levels are those of a topic or metric, where what belongs together is together: the
+// letters of an instrument with its number ("TE/77"), a unit in brackets ("[m3/h]"); and
+// without the end of a name that says no more than that it is the value.
+func levels(path string) []string {
+	var all []string
+	for _, level := range strings.Split(path, "/") {
+		last := len(all) - 1
+		switch {
+		case last >= 0 && strings.LastIndexAny(all[last], "[(") > strings.LastIndexAny(all[last], "])") && strings.ContainsAny(level, "])"):
+			all[last] += "/" + level
+		case last >= 0 && isTag(all[last], level):
+			all[last] += "-" + level
+		default:
+			all = append(all, level)
+		}
+	}
+	for i := range all {
+		all[i] = withoutValue(all[i])
+	}
+	return all
+}
+
+// isTag tells whether two levels are the letters and the number of one instrument.
+func isTag(letters, number string) bool {
+	if strings.Trim(letters, "ABCDEFGHIJKLMNOPQRSTUVWXYZ") != "" || strings.Trim(number, "0123456789") != "" {
+		return false
+	}
+	_, ok := byLetters(letters + "-" + number)
+	return ok
+}
+
+// withoutValue is a name without an end such as ".PV".
+func withoutValue(name string) string {
+	if i := strings.LastIndexAny(name, "._"); i > 0 && slices.Contains(valueWords, plain(name[i:])) {
+		return name[:i]
+	}
+	return name
+}
+
+// inBrackets is the unit that stands in brackets at the end of a name, and what is before.
+func inBrackets(name string) (before string, u unit.Unit, ok bool) {
+	text := strings.TrimRight(name, " ")
+	open := strings.LastIndexAny(text, "[(")
+	if open < 0 || !strings.HasSuffix(text, "]") && !strings.HasSuffix(text, ")") {
+		return name, u, false
+	}
+	inside := strings.TrimSpace(text[open+1 : len(text)-1])
+	if strings.Trim(inside, "0123456789.") == "" {
+		return name, u, false
+	}
+	u, err := unit.LookupAs(inside, tells...)
+	if before = strings.TrimRight(text[:open], " _-."); err != nil || before == "" {
+		return name, u, false
+	}
+	return before, u, true
 }

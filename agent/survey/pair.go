@@ -162,7 +162,7 @@ var lastDigit = regexp.MustCompile(`^([A-Z]{1,4}[-_ .]?)([0-9]{1,5})[0-9]([A-Z]?
 // quantity, side and unit, and of an instrument's number all but the last digit.
 func stem(s *Signal) string {
 	parts := own(s)
-	last := parts[len(parts)-1]
+	last, _, _ := inBrackets(parts[len(parts)-1])
 	if m := lastDigit.FindStringSubmatch(strings.ToUpper(last)); m != nil {
 		last = m[2]
 	} else {

@@ -1,6 +1,8 @@
 package survey
 
 import (
+	"strings"
+
 	"heatreeve/ingest/quality"
 	"heatreeve/ingest/sparkplug"
 )
@@ -96,6 +98,9 @@ func (s *Survey) plugReading(r sparkplug.Reading, arrival int64) {
 		return
 	}
 	place.value(r.Value)
+	if _, after, ok := strings.Cut(number(r.Value), "."); ok && len(after) < 6 {
+		place.decimals = max(place.decimals, len(after))
+	}
 	if r.Stamped && !r.Historical {
 		place.stamps++
 		place.lag(arrival - r.At)

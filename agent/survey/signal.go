@@ -1,6 +1,7 @@
 package survey
 
 import (
+	"fmt"
 	"slices"
 	"strings"
 )
@@ -115,6 +116,14 @@ func (t *topic) signal(pointer string) Signal {
 		_, told.Unit = list(at)
 		told.Says = t.series[at].words[0]
 	}
+	if by, ok := t.namedBy(pointer); ok {
+		told.Guess.Why = fmt.Sprintf("not one tag: each element of the list is another, named by its %q", key(by))
+		return told
+	}
+	if strings.Contains(within, "/"+each) {
+		told.Guess.Why = "a list within a list, which no tag reads"
+		return told
+	}
 	told.Guess = guess(&told)
 	return told
 }
@@ -134,7 +143,7 @@ func (t *topic) beside(pointer string, is func(string, *series) bool) (string, b
 		if best != "" {
 			return best, true
 		}
-		if samples != "" && around == samples+"/"+each {
+		if samples != "" && strings.HasSuffix(around, "/"+each) {
 			break
 		}
 	}

@@ -3,7 +3,7 @@
 // measure, and why it is thought so. It writes a draft of the tags and loads of a site
 // file, in which what only an engineer can know is marked.
 //
-// It listens only, and keeps no payload. What it remembers is bounded: of each topic the
+// It listens only, and keeps no payload but the beginning of a text. What it remembers is bounded: of each topic the
 // [MostSeries] values met first, and of topics as many as it is told.
 // Sparkplug B is read too: there an edge node or device stands for a topic, and its metrics
 // for values.

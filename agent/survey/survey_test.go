@@ -86,6 +86,26 @@ func TestListOfStampedSamples(t *testing.T) {
 	}
 }
 
+// A message that is nothing but a list is one of samples, and the draft says so.
+func TestListThatIsTheWholeMessage(t *testing.T) {
+	s := heard(map[string][]string{"a/TT-7": {fmt.Sprintf(`[{"t": %d, "value": 61}, {"t": %d, "value": 62}]`, epoch/1e6-2000, epoch/1e6-1000)}})
+	got := signals(s)["TT-7"]
+	if got.Samples != "whole" || got.Value != "/value" || got.Time != "/t" || got.Count != 2 {
+		t.Errorf("samples %q, value %q, time %q, count %d", got.Samples, got.Value, got.Time, got.Count)
+	}
+	if keys := got.keys(); !strings.Contains(keys, "samples: whole, value: /value, time: /t,") {
+		t.Errorf("keys %s", keys)
+	}
+}
+
+// Names with units in brackets pair up like those without, and name tags without them.
+func TestLoadOfNamesWithUnitsInBrackets(t *testing.T) {
+	found, _ := Loads(heard(map[string][]string{"heat meter/7/supply temperature [°C]": {"80"}, "heat meter/7/return temperature [°C]": {"60"}, "heat meter/7/volume flow [m³/h]": {"9"}}).Topics())
+	if len(found) != 1 || found[0].Flow != "volume_flow" || found[0].Inlet != "supply_temperature" || found[0].Outlet != "return_temperature" {
+		t.Errorf("%+v, want one load", found)
+	}
+}
+
 func TestShapes(t *testing.T) {
 	for _, tt := range []struct {
 		payloads []string
@@ -120,6 +140,14 @@ func TestGuesses(t *testing.T) {
 		{"hall/boiler/supplyTemperature", []string{"82"}, "°C", "temperature", false, false},
 		{"hall/meter/energy_kwh", []string{"100", "100"}, "kWh", "energy", true, true},
 		{"hall/meter/flow_kg_h", []string{"100"}, "kg/h", "mass flow", true, false},
+		{"a/TI2101.PV", []string{"80.1", "80.3"}, "°C", "temperature", false, false},
+		{"a/FIC_7_PV", []string{"8"}, "", "volume flow", false, false},
+		{"a/TIC101.SP", []string{"80"}, "", "", false, false},
+		{"a/TE/77", []string{"353.2", "354"}, "K", "temperature", false, false},
+		{"hall/AB/77", []string{"3"}, "", "", false, false},
+		{"m/supply temperature [°F]", []string{"180"}, "°F", "temperature", true, false},
+		{"m/volume flow [m³/h]", []string{"9.1"}, "m3/h", "volume flow", true, false},
+		{"m/hall (2)", []string{"9.1"}, "", "", false, false},
 		{"hall/lamp", []string{"1", "0"}, "", "", false, false},
 		{"hall/x", []string{`{"value": 3, "unit": "bananas"}`}, "", "", false, false},
 		{"hall/counter", []string{"1", "2", "3", "4", "5", "6", "7"}, "", "", false, true},
@@ -284,7 +312,7 @@ func TestSparkplug(t *testing.T) {
 		t.Errorf("progress %+v, want one metric without a name and one message that cannot be read", p)
 	}
 	got := signals(s)["flow"]
-	if got.Topic != "works/plc" || got.Metric != "flow" || got.Min != 2.5 || got.Max != 3.25 || got.Count != 2 || got.Guess.Quantity != "volume flow" {
+	if got.Topic != "works/plc" || got.Metric != "flow" || got.Min != 2.5 || got.Max != 3.25 || got.Decimals != 2 || got.Count != 2 || got.Guess.Quantity != "volume flow" {
 		t.Errorf("%+v", got)
 	}
 	if c := got.Clock; c == nil || c.Behind < 0 || c.Behind > 0.6 {

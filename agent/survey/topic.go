@@ -34,6 +34,7 @@ type topic struct {
 	live               int
 	largest            int // payload, bytes
 	shape              Shape
+	text               string             // the beginning of the last one that was no number and no JSON
 	series             map[string]*series // by pointer; "" of a bare payload
 	room               *int               // places that may still be looked at, of all topics
 	crowded            bool               // there were more places than are looked at
@@ -92,6 +93,7 @@ func (t *topic) look(m *Message) Shape {
 	if !utf8.Valid(text) || bytes.ContainsFunc(text, func(r rune) bool { return r < ' ' && r != '\t' && r != '\n' && r != '\r' }) {
 		return Bytes
 	}
+	t.text = sample(text)
 	return Words
 }
 
@@ -128,6 +130,10 @@ type Topic struct {
 	// fewer than two came.
 	Every float64 `json:"every_s"`
 	Gap   float64 `json:"longest_gap_s"`
+	// Text is the beginning of the last payload that was text.
+	Text string `json:"text,omitempty"`
+	// Hurdles are what keeps numbers of it from being read, each with an example.
+	Hurdles map[Hurdle]string `json:"hurdles,omitempty"`
 	// Crowded tells that its payloads have more places than were looked at.
 	Crowded bool     `json:"crowded,omitempty"`
 	Signals []Signal `json:"signals"`
@@ -135,7 +141,7 @@ type Topic struct {
 
 // tell sums up what is known of the topic.
 func (t *topic) tell() Topic {
-	told := Topic{Name: t.name, Shape: t.shape, Messages: t.messages, Retained: t.retained, Largest: t.largest, Crowded: t.crowded}
+	told := Topic{Name: t.name, Shape: t.shape, Messages: t.messages, Retained: t.retained, Largest: t.largest, Text: t.text, Crowded: t.crowded}
 	if t.live > 1 {
 		told.Every = float64(t.last-t.first) / float64(t.live-1) / 1e9
 		told.Gap = float64(t.longestGap) / 1e9
@@ -144,6 +150,9 @@ func (t *topic) tell() Topic {
 		if t.measures(pointer) {
 			told.Signals = append(told.Signals, t.signal(pointer))
 		}
+	}
+	if all := t.hurdles(); len(all) > 0 {
+		told.Hurdles = all
 	}
 	return told
 }

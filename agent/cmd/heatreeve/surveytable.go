@@ -25,7 +25,7 @@ func surveyJSON(s *survey.Survey, d survey.Draft) surveyed {
 	return surveyed{d.Broker.URL, d.For.Seconds(), p.Messages, p.Beyond, d.Topics}
 }
 
-const surveyLegend = `at: JSON Pointer of the value; a bare number has none. ?: guessed.
+const surveyLegend = `at: JSON Pointer of the value; a bare number has none. ?: guessed. …: left out.
 stamps: of the payload, against this machine's clock at arrival.
 `
 
@@ -48,6 +48,9 @@ func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 	if p.Malformed > 0 {
 		fmt.Fprintf(w, "note: %d messages of the Sparkplug namespace could not be read.\n", p.Malformed)
 	}
+	for _, hurdle := range survey.Hurdles(d.Topics) {
+		fmt.Fprintln(w, wrapped("note: "+legible(hurdle), "  "))
+	}
 	found, doubts := survey.Loads(d.Topics)
 	if len(found) > 0 {
 		fmt.Fprint(w, "\nLoads that names suggest:\n")
@@ -67,17 +70,47 @@ func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 }
 
 func topicLines(t *columns, topic *survey.Topic) {
-	name := legible(topic.Name)
+	name := middleOut(legible(topic.Name), 60)
 	if len(topic.Signals) == 0 {
-		t.line(name, "", every(topic.Every, topic.Retained == topic.Messages), string(topic.Shape), "", "")
+		t.line(name, "", every(topic.Every, topic.Retained == topic.Messages), middleOut(strings.TrimSpace(string(topic.Shape)+" "+textOf(topic)), 30), "", "")
 		return
 	}
 	for i := range topic.Signals {
 		s := &topic.Signals[i]
-		at := legible(s.Metric + s.Samples + strings.Repeat("/*", min(1, len(s.Samples))) + s.Value)
+		at := middleOut(legible(s.Metric+listOf(s)+s.Value), 40)
 		t.line(name, at, every(topic.Every, topic.Retained == topic.Messages), valuesOf(s), likely(s), stampsOf(s))
 		name = ""
 	}
+}
+
+// listOf is the pointer of any element of the list that a signal comes in.
+func listOf(s *survey.Signal) string {
+	switch s.Samples {
+	case "":
+		return ""
+	case "whole":
+		return "/*"
+	}
+	return s.Samples + "/*"
+}
+
+// textOf is the beginning of a topic's text.
+func textOf(t *survey.Topic) string {
+	if t.Shape != survey.Words {
+		return ""
+	}
+	return strconv.Quote(t.Text)
+}
+
+// middleOut leaves out the middle of a text that is longer than most characters, so that
+// one name does not stretch a table.
+func middleOut(text string, most int) string {
+	all := []rune(text)
+	if len(all) <= most {
+		return text
+	}
+	end := most / 2
+	return string(all[:most-end-1]) + "…" + string(all[len(all)-end:])
 }
 
 // every is how often messages come; those that the broker had kept tell nothing of it.
