@@ -64,7 +64,10 @@ func (o *operating) draws(t *testing.T, draw func(*rand.Rand) float64) func(*ran
 		x.Pressure += pressure
 		x.OutletPressure += pressure
 		duty := work(draw(rng), &x) * (1 + cp*draw(rng))
-		if s.FlowKind == VolumeFlow {
+		switch {
+		case s.CalibratedAt > 0: // it shows the root of ρ·v², whatever is reckoned from that
+			duty *= math.Sqrt(1 + density*draw(rng))
+		case s.FlowKind == VolumeFlow:
 			duty *= 1 + density*draw(rng)
 		}
 		return duty
@@ -203,6 +206,18 @@ func operatingPoints(t *testing.T) []operating {
 	add(circuit("air by volume", air, VolumeFlow, 0.8, 180, 60, 1.02e5), func(o *operating) {
 		o.inputs[PartFlow].accuracy, o.inputs[PartPressure].accuracy = 0.04, 1e3
 	})
+	for _, kind := range []FlowKind{MassFlow, VolumeFlow, MolarFlow} {
+		unit := map[FlowKind]string{MassFlow: "kg/s", VolumeFlow: "m³/s", MolarFlow: "mol/s"}[kind]
+		add(circuit("air by orifice, in "+unit, air, kind, 2, 180, 60, 6e5), func(o *operating) {
+			o.stream.CalibratedAt, o.stream.MeterAtOutlet = 3.8, kind == MassFlow
+			o.inputs[PartFlow].accuracy, o.inputs[PartPressure].accuracy = 0.01, 25e3
+			o.inputs[PartInlet], o.inputs[PartOutlet] = doubt{accuracy: 4}, doubt{accuracy: 3, scatter: 1}
+		})
+	}
+	add(circuit("glycol of vague strength by orifice", glycol, VolumeFlow, 6e-3, -4, 2, 3e5), func(o *operating) {
+		o.stream.Gives, o.fluid, o.stream.CalibratedAt = false, mixed(t, "propylene glycol", 0.32, 0.02), 998
+	})
+	add(circuit("oil of uncertain density by orifice", oil, MassFlow, 4, 240, 180, 3e5), func(o *operating) { o.stream.CalibratedAt = 900 })
 	return all
 }
 
