@@ -175,6 +175,53 @@ func TestSpikesInNoise(t *testing.T) {
 	}
 }
 
+// How often normal noise alone is found to be something, and single readings astray are
+// found, of readings each second; as the reference of the keys tells it.
+func TestRates(t *testing.T) {
+	const n = 100_000
+	spikes := func(resolution float64) Limits { return Limits{Spikes: true, Resolution: resolution} }
+	for _, tt := range []struct {
+		name                string
+		limits              Limits
+		noise, step, astray float64
+		every               int
+		want, about         float64
+	}{
+		{"noise of ten resolutions", spikes(0.1), 1, 0.1, 0, 1, 0.049, 0.004},
+		{"noise of one", spikes(0.1), 0.1, 0.1, 0, 1, 0.005, 0.002},
+		{"4 σ astray", spikes(0.1), 1, 0.1, 4, 50, 0.64, 0.04},
+		{"6 σ astray", spikes(0.1), 1, 0.1, 6, 50, 0.89, 0.03},
+		{"8 σ astray", spikes(0.1), 1, 0.1, 8, 50, 0.98, 0.015},
+		{"10 σ astray", spikes(0.1), 1, 0.1, 10, 50, 0.998, 0.003},
+		{"a fifth of what may change", Limits{Fastest: 1}, 0.2, 0, 0, 1, 0.0003, 0.0003},
+		{"a half of what may change", Limits{Fastest: 1}, 0.5, 0, 0, 1, 0.12, 0.01},
+		{"noise of a fifth of a step", Limits{StuckAfter: 1800 * second, Resolution: 0.1}, 0.02, 0.1, 0, 1, 0.98, 0.02},
+		{"noise of half a step", Limits{StuckAfter: 1800 * second, Resolution: 0.1}, 0.05, 0.1, 0, 1, 0, 0},
+	} {
+		r := rand.New(rand.NewPCG(7, 8))
+		var s State
+		found, of := 0.0, 0.0
+		for i := range n {
+			v := 300 + tt.noise*r.NormFloat64()
+			astray := i%tt.every == tt.every-1
+			if astray {
+				v += tt.astray
+			}
+			if tt.step > 0 {
+				v = math.Round(v/tt.step) * tt.step
+			}
+			if m, _ := tt.limits.Judge(&s, begin+int64(i)*second, v); astray {
+				if of++; m != quality.None {
+					found++
+				}
+			}
+		}
+		if got := found / of; math.Abs(got-tt.want) > tt.about {
+			t.Errorf("%s: %.4f of the readings, want %.4f ± %.4f", tt.name, got, tt.want, tt.about)
+		}
+	}
+}
+
 // Where several tests find something, the first in order is told, and a spike is set aside
 // whatever it is called.
 func TestOrderOfTests(t *testing.T) {
