@@ -1,6 +1,7 @@
 package loads
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -266,18 +267,20 @@ func (e *Engine) begin(was int64) bool {
 }
 
 // tallyBefore counts as late what the accounts begin too late for: the readings before g,
-// but for the newest of each tag, which is held there.
+// but for those of each tag's newest grid point, which is held there.
 func (e *Engine) tallyBefore(g int64) {
 	for i := range e.tags {
-		before := 0
-		for _, s := range e.tags[i].Pending {
-			if s.At <= g {
-				before++
-			}
+		before, _ := slices.BinarySearchFunc(e.tags[i].Pending, g+1, byStamp)
+		if before == 0 {
+			continue
 		}
-		e.tally[i].Late += uint64(max(0, before-1))
+		newest := e.tags[i].Pending[before-1].At
+		late, _ := slices.BinarySearchFunc(e.tags[i].Pending, ceil(newest, e.cfg.Grid)-e.cfg.Grid+1, byStamp)
+		e.tally[i].Late += uint64(late)
 	}
 }
+
+func byStamp(s sample, at int64) int { return cmp.Compare(s.At, at) }
 
 // arrive brings what the tags hold, and whether it holds, to g.
 func (e *Engine) arrive(g int64) {

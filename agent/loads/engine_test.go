@@ -325,6 +325,22 @@ func TestWhatIsBeforeTheBeginningIsCounted(t *testing.T) {
 	}
 }
 
+// Amounts of the first grid step wait each for itself, and none of them is late.
+func TestAmountsAtTheBeginningAreNotLate(t *testing.T) {
+	cfg := plant(liquid)
+	cfg.Tags[flow] = Tag{Name: "flow", MaxAge: minute, Counter: &Counter{Each: true}}
+	cfg.Loads[0].Stream.FlowKind = VolumeFlow
+	e := engine(t, cfg)
+	beat := Beat{at(0.9, 0.01, 350, 330), through(10)}
+	for i := range int64(8) {
+		beat.Readings = append(beat.Readings, Reading{Tag: flow, At: epoch + (i+1)*100_000_000, Value: 0.01})
+	}
+	e.Advance(beat, nil)
+	if late := e.Snapshot().Tags[flow].Late; late != 0 {
+		t.Errorf("%d late; want none", late)
+	}
+}
+
 // Many readings for one grid point wait as one, so a burst is no crowd, and the
 // last of them is the one that counts.
 func TestBurstWithinAGridStep(t *testing.T) {
