@@ -70,7 +70,7 @@ func tagName(s *Signal, levels int) string {
 	return name
 }
 
-// own are the names that lead to a signal, from the topic's first level on.
+// own are the names that lead to a signal, from the topic's first level on; at least one.
 func own(s *Signal) []string {
 	parts := slices.DeleteFunc(levels(s.Topic), func(level string) bool { return level == "" })
 	if s.Metric != "" {
@@ -80,6 +80,9 @@ func own(s *Signal) []string {
 		if !slices.Contains(valueWords, plain(token)) && token != "" {
 			parts = append(parts, withoutValue(key("/"+token)))
 		}
+	}
+	if len(parts) == 0 {
+		return []string{"tag"} // of the topic "/", say
 	}
 	return parts
 }

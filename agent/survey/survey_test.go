@@ -323,7 +323,21 @@ func TestSparkplug(t *testing.T) {
 	}
 }
 
+// A topic of nothing but slashes has no name to give.
+func TestTopicWithoutAName(t *testing.T) {
+	topics := heard(map[string][]string{"/": {`{"v": 3, "unit": "degC"}`}, "//": {"4"}}).Topics()
+	if found, doubts := Loads(topics); len(found)+len(doubts) != 0 || len(topics) != 2 {
+		t.Errorf("%+v, %q of %d topics", found, doubts, len(topics))
+	}
+	for _, topic := range topics {
+		if s := topic.Signals[0]; !strings.HasPrefix(s.Tag, "tag") {
+			t.Errorf("%s: tag %q", topic.Name, s.Tag)
+		}
+	}
+}
+
 func FuzzHear(f *testing.F) {
+	f.Add("/", []byte("0"), true)
 	f.Add("a/TT-1", []byte(`{"v": 1, "data": [{"t": 1, "v": [1, [2]]}]}`), false)
 	f.Add("a", []byte("1e400"), true)
 	if raw, err := hex.DecodeString(birth); err == nil {
