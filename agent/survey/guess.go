@@ -88,7 +88,7 @@ func fromNames(s *Signal) Guess {
 		name, inside, bracketed := inBrackets(name)
 		if bracketed && g.Unit == "" && (g.dimension == 0 || g.dimension == inside.Dimension) {
 			g.Unit, g.dimension, g.Sure = inside.Symbol, inside.Dimension, true
-			g.because(fmt.Sprintf("the name %q has it in brackets", name))
+			g.because(fmt.Sprintf("the unit in brackets behind %q", name))
 		}
 		words := split(name)
 		if u, text, ok := unitIn(words); ok && g.Unit == "" && (g.dimension == 0 || g.dimension == u.Dimension) {

@@ -37,7 +37,7 @@ func Hurdles(topics []Topic) []string {
 	}
 	advice := map[Hurdle]string{
 		Spelled: "a tag reads a bare number, or one in JSON without quotes; have them published so",
-		Parted:  "a tag finds its value by the place in the message alone. Where their order never changes and none is ever left out, value: /0/v and the like read them; otherwise have each published by itself, or as members of one object",
+		Parted:  "a tag finds its value by the place in the message alone. Where their order never changes and none is ever left out, pointers with 0, 1 and so on for the * read them; otherwise have each published by itself, or as members of one object",
 		Nested:  "a tag reads one list of a message; have them published in one",
 	}
 	var all []string
