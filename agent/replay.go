@@ -116,8 +116,8 @@ func (r *replay) collect(g int64) error {
 	return nil
 }
 
-// reach is how far back the load remembers: at least what its rates are fitted over, what
-// its verdict rests on, and what a test on one of its signals looks at.
+// reach is how far back the load remembers: at least what its rates are fitted over, and
+// what its verdict rests on.
 func (r *replay) reach() int64 {
 	l := &r.site.Loads[r.load]
 	span := 3 * int64(l.Design.Lasting)
@@ -126,15 +126,11 @@ func (r *replay) reach() int64 {
 	} else {
 		span = max(span, 3*int64(l.Stream.StoredOver))
 	}
-	for i := range r.cfg.Tags {
-		if s := r.cfg.Tags[i].Screen; s != nil {
-			span = max(span, 2*s.StuckAfter)
-		}
-	}
 	return max(leastReplay, span)
 }
 
-// newest reads a tag far enough back from g.
+// newest reads a tag far enough back from g: for what its load remembers, and for what a
+// test on its own signal looks at.
 func (r *replay) newest(ids map[string]uint32, tag int, g int64) (found []loads.Reading, err error) {
 	t := &r.cfg.Tags[tag]
 	enough := scatterReadings
@@ -143,8 +139,12 @@ func (r *replay) newest(ids map[string]uint32, tag int, g int64) (found []loads.
 	} else if t.Counter != nil {
 		enough = 3
 	}
+	tested := int64(0)
+	if t.Screen != nil {
+		tested = 2 * t.Screen.StuckAfter
+	}
 	for _, span := range replaySpans {
-		span = max(span, r.reach(), 2*t.MaxAge)
+		span = max(span, r.reach(), 2*t.MaxAge, tested)
 		found, err = r.of(ids, tag, g-span, g)
 		if err != nil || len(found) >= enough || !t.OnChange && span >= 2*t.MaxAge && span >= 24*leastReplay {
 			return found, err
