@@ -252,7 +252,7 @@ func (h *history) lastMeasured(load string, at int64) (last store.Minute, ok boo
 // loadsMinute is a stored minute as the engine has it.
 func loadsMinute(m *store.Minute) loads.Minute {
 	x := loads.Minute{
-		Start: m.Start, Measured: nanoseconds(m.Measured), Bridged: nanoseconds(m.Bridged), Missing: nanoseconds(m.Missing),
+		Start: m.Start, Measured: nanoseconds(m.Measured), Bridged: nanoseconds(m.Bridged), Missing: nanoseconds(m.Missing), Uncertain: nanoseconds(m.Uncertain),
 		Given: m.Given, Taken: m.Taken, Duty: m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, Uncertainty: m.DutyUncertainty,
 		Random: m.Random, MassFlow: m.Flow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure, Content: m.Content,
 	}

@@ -210,7 +210,7 @@ func TestARecordIsExplainedWhereReadingsAreGone(t *testing.T) {
 	l, shut := open(t, parsed(t, benchSite), path, store.Options{})
 	defer shut()
 	start := clock.Add(-48*time.Hour).UnixNano() / 60e9 * 60e9
-	m := store.Minute{Load: l.loadIDs[0], Start: start, Measured: 45, Missing: 15, Given: 4.5e6, Duty: 1e5, DutyMin: 9e4, DutyMax: 1.1e5, Flow: 1, Inlet: 350, Outlet: 330, Pressure: 4e5, Random: 1e8}
+	m := store.Minute{Load: l.loadIDs[0], Start: start, Measured: 45, Missing: 15, Uncertain: 20, Given: 4.5e6, Duty: 1e5, DutyMin: 9e4, DutyMax: 1.1e5, Flow: 1, Inlet: 350, Outlet: 330, Pressure: 4e5, Random: 1e8}
 	m.Systematic[loads.PartFlow], m.Systematic[loads.PartOutlet] = 30e3, -40e3
 	if err := l.store.Commit(store.Batch{Minutes: []store.Minute{m}}); err != nil {
 		t.Fatal(err)
@@ -231,6 +231,9 @@ func TestARecordIsExplainedWhereReadingsAreGone(t *testing.T) {
 	}
 	if q := lineOf(w, "Q"); q == nil || q.Formula != "(4500 − 0) / 45" || q.Shown != "100" {
 		t.Errorf("its duty is %+v", q)
+	}
+	if tu := lineOf(w, "tu"); w.Quality != "uncertain" || tu == nil || tu.Shown != "20" {
+		t.Errorf("20 s were uncertain, and it is %q: %+v", w.Quality, tu)
 	}
 	if len(w.Notes) == 0 || !strings.Contains(w.Notes[0], "no longer in the history") {
 		t.Errorf("notes %q", w.Notes)

@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"heatreeve/agent/loads"
+	"heatreeve/ingest/quality"
 )
 
 // Record is a minute that the history keeps of a load, when the readings of it are gone.
@@ -22,6 +23,10 @@ func OfRecord(r Record) *Working {
 	s.note("the readings of this minute are no longer in the history: this is its record, whose means cannot be worked again from enthalpies")
 	s.begin("Time")
 	span := s.given("t", "measured", seconds(m.Measured), "s", 3, "record of the minute")
+	if m.Uncertain > 0 {
+		s.Quality = quality.Uncertain.String()
+		s.given("tu", "of it by an uncertain reading", seconds(m.Uncertain), "s", 3, "")
+	}
 	s.given("tb", "bridged by a straight line", seconds(m.Bridged), "s", 3, "")
 	s.given("tm", "missing", seconds(m.Missing), "s", 3, "")
 	s.end()
