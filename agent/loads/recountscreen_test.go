@@ -138,7 +138,7 @@ func outlies(all []Reading, window []int, step float64) bool {
 	}
 	m := median(func(k int) float64 { return all[k].Value })
 	s := median(func(k int) float64 { return math.Abs(all[k].Value - m) })
-	return math.Abs(all[window[6]].Value-m) > 3*max(s/(math.Sqrt2*math.Erfinv(0.5)), step)
+	return math.Abs(all[window[6]].Value-m) > 3*max(s/(math.Sqrt2*math.Erfinv(0.5)), step*(1+1e-6))
 }
 
 // standsStill tells whether the readings have stayed within a step since a time that is long

@@ -57,6 +57,6 @@ func (l *Limits) spike(s *State, value float64) bool {
 	if len(s.Recent) < window {
 		return false
 	}
-	_, _, outlier := Hampel(s.Recent, value, l.Resolution)
+	_, _, outlier := Hampel(s.Recent, value, l.step())
 	return outlier
 }

@@ -146,6 +146,17 @@ func TestSpike(t *testing.T) {
 	if want := []bool{6: false, 7: true, 8: true, 9: true, 12: false}; !slices.Equal(aside, want) {
 		t.Errorf("of a step %v are set aside, want %v", aside, want)
 	}
+	// Three steps beside are no outlier in K either, where they are 0.30000000000001 K.
+	for n := range 100 {
+		c := float64(n)
+		flat := []float64{c, c, c, c, c, c, c + 0.3}
+		for i := range flat {
+			flat[i] += 273.15
+		}
+		if _, aside := judged(l, second, flat...); aside[6] {
+			t.Errorf("three steps beside %g °C are set aside", c)
+		}
+	}
 }
 
 // Of normal noise one reading in twenty is set aside, since the median deviation of seven
@@ -188,7 +199,7 @@ func TestRates(t *testing.T) {
 		want, about         float64
 	}{
 		{"noise of ten resolutions", spikes(0.1), 1, 0.1, 0, 1, 0.049, 0.004},
-		{"noise of one", spikes(0.1), 0.1, 0.1, 0, 1, 0.005, 0.002},
+		{"noise of one", spikes(0.1), 0.1, 0.1, 0, 1, 0.0005, 0.0005},
 		{"4 σ astray", spikes(0.1), 1, 0.1, 4, 50, 0.64, 0.04},
 		{"6 σ astray", spikes(0.1), 1, 0.1, 6, 50, 0.89, 0.03},
 		{"8 σ astray", spikes(0.1), 1, 0.1, 8, 50, 0.98, 0.015},
