@@ -29,13 +29,13 @@ func (p *page) missing(in *loads.Input) string {
 	at := func(ns int64) string { return time.Unix(0, ns).In(p.Site.Zone).Format("2006-01-02 15:04:05 -07:00") }
 	what := "had no number"
 	if !math.IsNaN(in.Held.Value) {
-		what = fmt.Sprintf("last said %s %s", short(payload(tag, in.Held.Value)), tag.Unit.Symbol)
+		what = fmt.Sprintf("last said %s %s", short(payload(tag, in.Held.Value)), unitOf(tag))
 	}
 	last := fmt.Sprintf("%s: tag %q %s at %s", in.Name, tag.Name, what, at(in.Held.At))
 	if in.Held.Mark != 0 && in.Fault != loads.BadReading { // whose reason tells the mark
 		last += fmt.Sprintf(", which is %v (%v)", in.Held.Mark.Quality(), in.Held.Mark)
 	}
-	if !tag.OnChange && p.Basis.Figure.At-in.Held.At >= int64(tag.MaxAge) {
+	if !tag.OnChange && !math.IsNaN(in.Held.Value) && p.Basis.Figure.At-in.Held.At >= int64(tag.MaxAge) {
 		return last + fmt.Sprintf("; it holds for %s s, and is missing since %s", fixed(tag.MaxAge.Seconds(), 3), at(in.Held.At+int64(tag.MaxAge)))
 	}
 	return last + "; " + in.Reason

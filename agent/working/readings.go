@@ -23,20 +23,42 @@ func (p *page) readings(title string) {
 
 func (p *page) reading(in *loads.Input) {
 	tag, q := &p.Site.Tags[in.Source.Tag], p.quantity(in)
-	l := Line{Symbol: q.symbol + "'", Words: p.read(in.Name, tag), Reading: p.sample(in.Held, in.Fault)}
+	l := Line{Symbol: q.symbol + "'", Words: p.read(in.Name, tag), Value: payload(tag, in.Held.Value), Reading: p.sample(in.Held, in.Fault)}
+	if tag.Counter != nil {
+		l.Symbol = countSymbol(tag) + "'"
+	}
 	if in.Aside {
 		l.Words += ", from before what has been set aside"
 	}
-	if math.IsNaN(in.Held.Value) {
+	if math.IsNaN(l.Value) {
 		l.Words += ", without a number"
 	} else {
-		l.Value, l.Unit = payload(tag, in.Held.Value), tag.Unit.Symbol
-		l.Shown = strconv.FormatFloat(l.Value, 'f', -1, 64)
+		l.Shown, l.Unit = digits(l.Value), unitOf(tag)
 	}
 	p.add(l)
 	if in.Alive.At != 0 {
 		p.add(Line{Words: "sign of life of its source", Reading: p.sample(in.Alive, loads.NoFault)})
 	}
+}
+
+// unitOf is that of the tag's numbers: of a register that counts pulses these, and of a raw
+// signal the quantity that it was turned into.
+func unitOf(t *site.Tag) string {
+	if t.Counter != nil {
+		return t.Numbers.Symbol
+	}
+	return t.Unit.Symbol
+}
+
+// digits is x in full.
+func digits(x float64) string { return strconv.FormatFloat(x, 'f', -1, 64) }
+
+// countSymbol is that of the newest count, or of what a message counts.
+func countSymbol(t *site.Tag) string {
+	if t.Counter.Each {
+		return "N"
+	}
+	return "N2"
 }
 
 // read names an input, and the raw signal that its tag's numbers were made of.
@@ -115,7 +137,7 @@ func (p *page) converted(q quantity, tag *site.Tag, si float64, decimals int) te
 // convert is the formula from the number of a tag to SI.
 func (p *page) convert(tag *site.Tag, q quantity, si float64) term {
 	n := payload(tag, si)
-	f := scaled(shown(q.symbol+"'", strconv.FormatFloat(n, 'f', -1, 64)), tag.Scale/q.size)
+	f := scaled(shown(q.symbol+"'", digits(n)), tag.Scale/q.size)
 	offset := tag.Offset / q.size
 	switch {
 	case tag.Unit.Gauge:
@@ -150,8 +172,11 @@ func (p *page) counter() {
 	of := map[string]string{"m3/s": "m3", "kg/s": "kg", "mol/s": "mol"}[q.unit]
 	p.begin("Counter")
 	if tag.Counter.Each {
-		p.rate(q, c, p.given("N", "counted since the message before", c.Amount, of, 9, "as it is told"))
+		p.rate(q, c, p.converted(quantity{"N", "counted since the message before", of, 1}, tag, c.Amount, 9))
 		return
+	}
+	if tag.Scale != 1 {
+		p.given("N1'", "count before", payload(tag, c.Before), unitOf(tag), mostDecimals, "")
 	}
 	was := p.converted(quantity{"N1", "count before", of, 1}, tag, c.Before, 9)
 	is := p.converted(quantity{"N2", "count", of, 1}, tag, c.Value, 9)

@@ -37,7 +37,7 @@ func (p *page) streamSpread() {
 	}
 	f, b := &p.Basis.Figure, p.Basis.Stream
 	if len(s.pair) > 0 {
-		r := named("r", b.Pair)
+		r := named("pair", b.Pair)
 		s.lasting = append(s.lasting, p.share("s12", "what the matched pair has in common", sum(s.pair).times(r.root()), f.Share[loads.PartPair]))
 	}
 	p.ofProperty(&s, loads.PartCp, "cp", "specific heat", p.at["stream"], b.ByFlow)
@@ -92,7 +92,7 @@ func (p *page) input(in *loads.Input, s *shares) {
 		lasting := u
 		if pair > 0 {
 			s.pair = append(s.pair, c.times(u))
-			lasting = number(1).minus(named("r", pair)).times(u.squared())
+			lasting = number(1).minus(named("pair", pair)).times(u.squared())
 		}
 		if in.Coarse > 0 {
 			lasting = p.coarse(in, q, lasting, pair > 0)
@@ -180,10 +180,10 @@ func (p *page) coarse(in *loads.Input, q quantity, u term, isVariance bool) term
 		u = u.squared()
 	}
 	if tag.Deadband > 0 {
-		u = u.plus(named("D", tag.Deadband/q.size).squared().over(number(3)))
+		u = u.plus(named("deadband", tag.Deadband/q.size).squared().over(number(3)))
 	}
 	if tag.Resolution > 0 {
-		u = u.plus(named("R", tag.Resolution/q.size).squared().over(number(12)))
+		u = u.plus(named("resolution", tag.Resolution/q.size).squared().over(number(12)))
 	}
 	return u
 }

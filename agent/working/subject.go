@@ -56,12 +56,14 @@ func (p *page) write() {
 		p.Fault = f.Fault.String()
 		p.faulty()
 		p.readings("Last readings")
+		p.raw()
 		p.verdict()
 		return
 	}
 	duty, u := f.Duty, f.Uncertainty
 	p.Duty, p.Uncertainty = &duty, &u
 	p.readings("Readings")
+	p.raw()
 	p.conversions()
 	switch {
 	case p.Basis.Vessel != nil:

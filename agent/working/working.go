@@ -9,7 +9,11 @@
 // Terminal, JSON and page have the same lines. Package working is pure: instants come in.
 package working
 
-import "time"
+import (
+	"encoding/json"
+	"math"
+	"time"
+)
 
 // CoverageFactor is that of the expanded uncertainty: about 95 % where many inputs make one
 // up (JCGM 100:2008, 6.3.3).
@@ -51,11 +55,23 @@ type Line struct {
 	// is given.
 	Law     string  `json:"law,omitempty"`
 	Formula string  `json:"formula,omitempty"`
-	Value   float64 `json:"value"`           // in Unit, with all the digits that there are
+	Value   float64 `json:"value"`           // in Unit, with all the digits that there are; NaN, in JSON null, where a reading has none
 	Shown   string  `json:"shown,omitempty"` // as it is printed; empty where there is none
 	Unit    string  `json:"unit,omitempty"`
 	Source  string  `json:"source,omitempty"` // whence the value or its law is
 	Reading *Sample `json:"reading,omitempty"`
+}
+
+// MarshalJSON writes null for a value that is none.
+func (l Line) MarshalJSON() ([]byte, error) {
+	type line Line
+	if !math.IsNaN(l.Value) {
+		return json.Marshal(line(l))
+	}
+	return json.Marshal(struct {
+		line
+		Value *float64 `json:"value"`
+	}{line: line(l)})
 }
 
 // Sample is a reading that was used, or the last one that was seen.

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"strings"
 	"unicode/utf8"
 
@@ -137,7 +138,7 @@ func sampleText(r *working.Sample) []string {
 	if r.Reason != "" {
 		quality += " (" + r.Reason + ")"
 	}
-	parts := []string{"from " + r.Tag, "at " + r.At.Format(lineTime) + ",", fmt.Sprintf("%g s old,", r.Age), quality}
+	parts := []string{"from " + r.Tag, "at " + r.At.Format(lineTime) + ",", fmt.Sprintf("%g s old,", math.Round(r.Age*1e3)/1e3), quality}
 	if r.Fault != "" {
 		parts[len(parts)-1] += ","
 		parts = append(parts, "not used: "+r.Fault)
