@@ -153,7 +153,8 @@ func (e *Engine) tell(b bounded, g int64) {
 		c.Why = fmt.Sprintf("counter %q fell from %.10g to %.10g: what passed is not known", tag.Name, from, t.Held.Value)
 	case implausible:
 		e.tally[b.tag].Implausible++
-		c.Why = fmt.Sprintf("counter %q rose from %.10g to %.10g in %g s: more than can have passed", tag.Name, from, t.Held.Value, float64(span)/1e9)
+		seconds := float64(span) / 1e9
+		c.Why = fmt.Sprintf("counter %q rose from %.10g to %.10g in %.4g s, in SI units: at most %.4g can have passed", tag.Name, from, t.Held.Value, seconds, leeway*b.largest*seconds+tag.Resolution)
 	}
 }
 

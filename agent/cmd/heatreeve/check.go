@@ -87,7 +87,7 @@ func notes(s *site.Site) []string {
 		all = append(all, notesOfBroker(&b)...)
 	}
 	all = append(append(all, idleTags(s)...), unstamped(s)...)
-	return append(all, outlasting(s)...)
+	return append(append(all, outlasting(s)...), boundless(s)...)
 }
 
 func notesOfBroker(b *site.Broker) []string {
@@ -117,13 +117,45 @@ func outlasting(s *site.Site) []string {
 	if s.Timing.Lateness >= usualLists {
 		return nil
 	}
-	var all []string
+	var names []string
 	for _, t := range s.Tags {
 		if t.Samples != nil {
-			all = append(all, fmt.Sprintf("tags.%s: comes in lists of samples, and timing.lateness is %v; what a list has of the time before that, where other tags are heard meanwhile, is late. Let it be longer than the time that a list spans", t.Name, s.Timing.Lateness))
+			names = append(names, t.Name)
 		}
 	}
-	return all
+	if names == nil {
+		return nil
+	}
+	return []string{fmt.Sprintf("tags.%s: %s in lists of samples, and timing.lateness is %v; what a list has of the time before that, where other tags are heard meanwhile, is late. Let it be longer than the time that a list spans",
+		strings.Join(names, ", "), one(names, "comes", "come"), s.Timing.Lateness)}
+}
+
+func one(names []string, is, are string) string {
+	if len(names) == 1 {
+		return is
+	}
+	return are
+}
+
+// boundless are the counters of a flow of which no rise is too great to be believed.
+func boundless(s *site.Site) []string {
+	var names []string
+	flows := make([]bool, len(s.Tags))
+	for i := range s.Loads {
+		if x := s.Loads[i].Stream; x != nil && !x.Flow.Constant() {
+			flows[x.Flow.Tag] = true
+		}
+	}
+	for i, t := range s.Tags {
+		if t.Counter != nil && t.Counter.Largest <= 0 && flows[i] {
+			names = append(names, t.Name)
+		}
+	}
+	if names == nil {
+		return nil
+	}
+	return []string{fmt.Sprintf("tags.%s: %s without the largest flow that can be; where the register jumps, such as after its exchange, that is booked as if it had passed. Let counts tell it, such as largest: 40 m3/h",
+		strings.Join(names, ", "), one(names, "counts", "count"))}
 }
 
 // unstamped are the tags that report on change whose time nobody knows once a message has
@@ -156,6 +188,11 @@ func idleTags(s *site.Site) []string {
 			if !src.Constant() {
 				used[src.Tag] = true
 			}
+		}
+	}
+	for i, t := range s.Tags {
+		if t.HasBeside && used[i] {
+			used[t.Beside] = true // it is the test of one that is read
 		}
 	}
 	var all []string
