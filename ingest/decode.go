@@ -428,7 +428,7 @@ func (d *Decoder) syntax(err error, payload []byte) *fault {
 	case !errors.As(err, &at) || at.ByteOffset < 0 || at.ByteOffset > int64(len(payload)):
 		return faultf(NotJSON, "is not JSON; check the tag's topic and value pointer")
 	case spellsNotFinite(word(payload, int(at.ByteOffset))):
-		return faultf(NotFinite, "holds a value that is not a finite number; publish nothing while there is no value")
+		return faultf(NotFinite, "holds a value that is not a finite number; publish null while there is no value")
 	}
 	return faultf(NotJSON, "is not JSON from byte %d on; check the publisher, and the tag's topic", at.ByteOffset)
 }
