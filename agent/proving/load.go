@@ -3,6 +3,7 @@ package proving
 import (
 	"fmt"
 	"math"
+	"strconv"
 	"strings"
 
 	"heatreeve/agent/loads"
@@ -25,6 +26,7 @@ func (t *Trial) tellLoad(i int) Load {
 	told.Figure = told.Basis.Figure
 	j := judge{t, i, declared, &told}
 	j.pressures()
+	j.temperatures()
 	switch f := &told.Figure; {
 	case !f.Measured():
 		j.add(Fault, "no duty: %v: %s", f.Fault, f.Reason)
@@ -159,6 +161,40 @@ func (j judge) pressure(tag *site.Tag, p float64) {
 	}
 }
 
+// farOff is how far a temperature must be off its design for its unit to be doubted, and
+// closeTo how near it must be in another one, K.
+const (
+	farOff  = 15
+	closeTo = 5
+)
+
+// temperatures looks, where one is far from its design, for a unit in which it would be at
+// it. Nothing is said of a stream that has its sides swapped.
+func (j judge) temperatures() {
+	s, d := j.declared.Stream, j.declared.Design
+	if s == nil {
+		return
+	}
+	for _, at := range []struct {
+		src    site.Source
+		design float64
+	}{{s.Inlet, d.Inlet}, {s.Outlet, d.Outlet}} {
+		if at.design == 0 || at.src.Constant() || !j.tags[at.src.Tag].has() {
+			continue
+		}
+		tag, shows := &j.site.Tags[at.src.Tag], j.tags[at.src.Tag].newest.Value
+		if tag.Unit.Dimension != unit.Temperature || near(shows, at.design, farOff) || near(shows, d.Inlet, closeTo) || near(shows, d.Outlet, closeTo) {
+			continue
+		}
+		for _, u := range unit.Named(unit.Temperature) {
+			if near(u.SI(tag.Unit.Of(shows)), at.design, closeTo) {
+				j.add(Fault, "%s shows %s; in %s that would be at the design's %.4g °C: check its unit", tag.Name, shown(tag, shows), u.Symbol, at.design-273.15)
+				break
+			}
+		}
+	}
+}
+
 func (t *tagTrial) has() bool { return t.live+t.kept > 0 }
 
 // pipe tells the duty with the meter in the other pipe, and which of the two a witness
@@ -182,28 +218,45 @@ func (j judge) pipe() {
 	j.add(Note, "with the meter in the %s pipe, as the file says, %s; in the %s pipe it would be %s (%+.2g %%)",
 		pipes[0], kilowatts(here.Duty), pipes[1], kilowatts(there.Duty), 100*(there.Duty/here.Duty-1))
 	if j.declared.HasWitness {
-		j.witness(pipes)
+		j.witness(pipes, apart)
 	}
 }
 
-// witness compares both with what the witness has counted: it tells only where its step is
-// small beside the difference, and it is clearly nearer to one.
-func (j judge) witness(pipes [2]string) {
+// witness compares both with what the witness has counted: it tells only where its step, and
+// the heat of the step of the grid that a count may stand late, are small beside the
+// difference, and it is clearly nearer to one. power is how far the two duties are apart, W.
+func (j judge) witness(pipes [2]string, power float64) {
 	counted := j.minutes[0][j.load].witness
 	ours := [2]float64{j.minutes[0][j.load].compared, j.minutes[1][j.load].compared}
 	tag := &j.site.Tags[j.declared.Witness.Tag]
 	apart := math.Abs(ours[0] - ours[1])
+	least := 3 * (tag.Resolution + float64(j.cfg.Grid)/1e9*math.Abs(j.told.Figure.Duty))
 	switch off := [2]float64{math.Abs(counted - ours[0]), math.Abs(counted - ours[1])}; {
-	case counted == 0 || apart < 3*tag.Resolution:
-		j.add(Note, "its witness %s cannot tell yet which pipe is right: listen for longer", tag.Name)
+	case counted != 0 && min(off[0], off[1]) > max(least, apart):
+		j.add(Note, "its witness %s agrees with neither: off by %s and %s", tag.Name, percent(off[0]/counted), percent(off[1]/counted))
+	case counted == 0 || apart < least:
+		// Spans of a witness begin and end once a minute, and not before it has counted.
+		enough := max(least/power, 3*float64(j.tags[j.declared.Witness.Tag].gap)/1e9) + 120
+		j.add(Note, "its witness %s cannot tell yet which pipe is right: listen for %.0f minutes", tag.Name, math.Ceil(enough/60))
 	case off[1] < apart/3 && off[0] > off[1]:
-		j.add(Fault, "its witness %s agrees with the %s pipe, and not with the %s pipe of the file (off by %.2g %% against %.2g %%): check where the meter sits",
-			tag.Name, pipes[1], pipes[0], 100*off[1]/counted, 100*off[0]/counted)
+		j.add(Fault, "its witness %s agrees with the %s pipe, and not with the %s pipe of the file (off by %s against %s): check where the meter sits",
+			tag.Name, pipes[1], pipes[0], percent(off[1]/counted), percent(off[0]/counted))
 	case off[0] < apart/3:
-		j.add(Note, "its witness %s agrees with the %s pipe, as the file says (off by %.2g %%)", tag.Name, pipes[0], 100*off[0]/counted)
+		j.add(Note, "its witness %s agrees with the %s pipe, as the file says (off by %s)", tag.Name, pipes[0], percent(off[0]/counted))
 	default:
-		j.add(Note, "its witness %s is clearly nearer to neither: off by %.2g %% and %.2g %%", tag.Name, 100*off[0]/counted, 100*off[1]/counted)
+		j.add(Note, "its witness %s is clearly nearer to neither: off by %s and %s", tag.Name, percent(off[0]/counted), percent(off[1]/counted))
 	}
 }
 
-func kilowatts(w float64) string { return fmt.Sprintf("%.4g kW", w/1e3) }
+func kilowatts(w float64) string { return figures(w/1e3, 4) + " kW" }
+
+func percent(ratio float64) string { return figures(100*ratio, 2) + " %" }
+
+// figures writes x with n figures that count, and never as a power of ten.
+func figures(x float64, n int) string {
+	places := 0
+	if x != 0 {
+		places = max(0, n-1-int(math.Floor(math.Log10(math.Abs(x)))))
+	}
+	return strconv.FormatFloat(x, 'f', min(places, 9), 64)
+}

@@ -154,6 +154,11 @@ func TestMistakes(t *testing.T) {
 		{name: "meter in the other pipe", plant: func(p *plant) { p.heat, p.seconds = 444.4e3, 600 }, want: fault("hall", "its witness ET-1 agrees with the inlet pipe, and not with the outlet pipe of the file")},
 		{name: "meter in its pipe", plant: func(p *plant) { p.heat, p.seconds = 457.0e3, 600 }, want: note("hall", "its witness ET-1 agrees with the outlet pipe, as the file says")},
 		{name: "witness too coarse", plant: func(p *plant) { p.heat, p.seconds = 457.0e3, 130 }, edit: func(s string) string { return strings.Replace(s, "0.01 kWh", "1 kWh", 1) }, want: note("hall", "its witness ET-1 cannot tell yet")},
+		{name: "far from its witness", plant: func(p *plant) { p.heat, p.seconds = 40e3, 130 }, want: note("hall", "its witness ET-1 agrees with neither: off by 1042 % and 1011 %")},
+		{name: "°C taken for °F", edit: func(s string) string {
+			return strings.Replace(unitOf("a/TT-2", "°C", "°F")(s), "allow: 5 %", "allow: 5 %, inlet: 110 °C, outlet: 70 °C", 1)
+		}, want: fault("hall", "TT-2 shows 70 °F; in °C that would be at the design's 70 °C: check its unit")},
+		{name: "large", plant: func(p *plant) { p.flow *= 60 }, want: note("hall", "with the meter in the outlet pipe, as the file says, 27418 kW")},
 		{name: "zero offset", plant: func(p *plant) { p.flow = 0.15 }, want: note("hall", "if the pump is off, 0.15 m3/h of FT-1 is its zero offset")},
 		{name: "no difference", plant: func(p *plant) { p.outlet = 109.9 }, want: note("hall", "inlet and outlet differ by -0.10 K")},
 		{name: "far from design", edit: design("9000 kW"), want: note("hall", "the duty is 0.0508 times the design")},
