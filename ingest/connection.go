@@ -135,7 +135,7 @@ func (s *Session) failed(ctx context.Context, err error) {
 // explain puts the library's error into words that a person can act on.
 func (s *Session) explain(err error) string {
 	if cause := s.dialErr.Load(); cause != nil {
-		return (*cause).Error()
+		return s.broker.withAdvice(*cause)
 	}
 	switch {
 	case errors.Is(err, packets.ErrorRefusedBadUsernameOrPassword), errors.Is(err, packets.ErrorRefusedNotAuthorised):
@@ -147,7 +147,7 @@ func (s *Session) explain(err error) string {
 	case errors.Is(err, packets.ErrorRefusedBadProtocolVersion):
 		return "the broker does not speak MQTT 3.1.1"
 	}
-	why := strings.TrimPrefix(err.Error(), packets.ErrorNetworkError.Error()+" : ")
+	why := strings.TrimPrefix(s.broker.withAdvice(err), packets.ErrorNetworkError.Error()+" : ")
 	if s.broker.tls && s.o.CertFile == "" {
 		// Since TLS 1.3 the refusal comes after the handshake, and may be overtaken by the end of the connection.
 		why += "; perhaps the broker wants a client certificate"

@@ -337,9 +337,26 @@ func (d *Decoder) timely(at, arrival int64) *fault {
 	case at < clockSet:
 		return faultf(UnsetClock, "is stamped %s: set the publisher's clock", inWords(at))
 	case at > arrival && at-arrival > int64(d.ahead):
-		return faultf(Ahead, "is stamped %s, %v after its arrival (allowed %v); set the clocks by network time", inWords(at), time.Duration(at-arrival), d.ahead)
+		return faultf(Ahead, "is stamped %s, %v after its arrival (allowed %v)%s; set the clocks by network time", inWords(at), round(time.Duration(at-arrival)), d.ahead, zoned(time.Duration(at-arrival)))
 	}
 	return nil
+}
+
+// round leaves out digits of a time that tell nothing.
+func round(d time.Duration) time.Duration {
+	if d < time.Second {
+		return d
+	}
+	return d.Round(100 * time.Millisecond)
+}
+
+// zoned tells of a lag that is the step of a time zone, as of a clock set by another one.
+func zoned(d time.Duration) string {
+	const quarter = 15 * time.Minute
+	if d < quarter/2 || d > 15*time.Hour || (d-d.Round(quarter)).Abs() > 30*time.Second {
+		return ""
+	}
+	return ", as of another time zone"
 }
 
 func inWords(at int64) string { return time.Unix(0, at).UTC().Format(time.RFC3339Nano) }

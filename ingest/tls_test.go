@@ -101,8 +101,8 @@ func checkTLS(t *testing.T, a *authority, url string) {
 	}{
 		"all right":             {func(*Options) {}, ""},
 		"other server name":     {func(o *Options) { o.ServerName = "other.plant" }, "other.plant"},
-		"address as the name":   {func(o *Options) { o.ServerName = "" }, "127.0.0.1"},
-		"other authority":       {func(o *Options) { o.CAFile = other.path("ca.pem") }, "unknown authority"},
+		"address as the name":   {func(o *Options) { o.ServerName = "" }, "the certificate is for broker.plant: give that as server_name"},
+		"other authority":       {func(o *Options) { o.CAFile = other.path("ca.pem") }, "give the certificates of its authority as ca"},
 		"system's authorities":  {func(o *Options) { o.CAFile = "" }, "unknown authority"},
 		"no client certificate": {func(o *Options) { o.CertFile, o.KeyFile = "", "" }, "certificate"},
 	} {
