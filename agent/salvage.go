@@ -6,6 +6,8 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
+	"strings"
 	"time"
 
 	"heatreeve/store"
@@ -43,12 +45,55 @@ func Salvage(data, into string) (s Salvaged, err error) {
 	s.Path = filepath.Join(into, HistoryFile)
 	r, err := store.Salvage(from, s.Path)
 	s.Lines, s.Whole = salvageLines(&r), r.Whole()
-	return s, err
+	if err != nil {
+		return s, err
+	}
+	if err := tellSalvage(s.Path, salvageEvent(&r, s.Lines, time.Now().UnixNano())); err != nil {
+		return s, fmt.Errorf("note in the new history what was lost: %w", err)
+	}
+	return s, nil
 }
+
+// tellSalvage adds the event to the salvaged history at path, so that every later report
+// over the time of the loss has it.
+func tellSalvage(path string, e store.Event) (err error) {
+	db, err := store.Open(path, store.Options{})
+	if err != nil {
+		return err
+	}
+	defer func() { err = errors.Join(err, db.Close()) }()
+	if e.Number, err = db.NextEvent(); err != nil {
+		return err
+	}
+	return db.Commit(store.Batch{Events: []store.Event{e}})
+}
+
+// salvageEvent tells of a salvage at now what it lost, from the earliest loss whose time is
+// known on.
+func salvageEvent(r *store.Report, lines []string, now int64) store.Event {
+	e := store.Event{At: now, Until: now, Kind: eventDamage, Text: "salvaged from another file, with nothing lost"}
+	if r.Whole() {
+		return e
+	}
+	newest := newestOf(r)
+	for _, t := range []store.Tally{r.LostBatches, r.LostReadings, r.LostMinutes, r.DamagedMinutes, r.DamagedHours, r.DamagedEvents} {
+		if t.Count > 0 && t.From > 0 && t.From <= newest {
+			e.At = min(e.At, t.From)
+		}
+	}
+	lost := slices.DeleteFunc(slices.Clone(lines), func(line string) bool {
+		return !strings.HasPrefix(line, "lost") && !strings.HasPrefix(line, "damaged")
+	})
+	e.Text = "salvaged from a damaged file; " + strings.Join(lost, "; ")
+	return e
+}
+
+// newestOf is the time of the newest record that is told of.
+func newestOf(r *store.Report) int64 { return max(r.Batches.To, r.LostBatches.To, r.Hours.To) }
 
 // salvageLines tells what is saved and what is lost.
 func salvageLines(r *store.Report) (lines []string) {
-	newest := max(r.Batches.To, r.LostBatches.To, r.Hours.To)
+	newest := newestOf(r)
 	for _, part := range []struct {
 		what string
 		store.Tally

@@ -2,6 +2,7 @@ package agent
 
 import (
 	"log/slog"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
@@ -79,6 +80,65 @@ func TestLedgerAfterASalvage(t *testing.T) {
 	if exact < 10 || stateless == 0 {
 		t.Errorf("%d pages wiped left the registers, %d took the state", exact, stateless)
 	}
+}
+
+// Whichever page was wiped, the salvaged history itself tells of it, where figures are missing
+// and later; one with nothing lost says so.
+func TestASalvagedHistoryTellsOfIt(t *testing.T) {
+	dir := t.TempDir()
+	path := filepath.Join(dir, HistoryFile)
+	if err := keep(t, path, store.Options{}, 700, ramp, "hot-water").Close(); err != nil {
+		t.Fatal(err)
+	}
+	whole, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	size, timed := os.Getpagesize(), 0
+	for page := -1; page < len(whole)/size; page += 3 {
+		b := append([]byte{}, whole...)
+		if page >= 0 {
+			clear(b[page*size : (page+1)*size])
+		}
+		damaged := filepath.Join(dir, "damaged.db")
+		if err := os.WriteFile(damaged, b, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		s, err := Salvage(damaged, t.TempDir())
+		if err != nil {
+			t.Fatalf("page %d wiped: %v", page, err)
+		}
+		e := onlyEvent(t, s.Path)
+		if want := "salvaged from "; e.Kind != eventDamage || !strings.HasPrefix(e.Text, want) || strings.Contains(e.Text, "nothing lost") != s.Whole || strings.Contains(e.Text, "saved: ") {
+			t.Errorf("page %d wiped: %+v of %q", page, e, s.Lines)
+		}
+		if e.At < e.Until && e.At < week.UnixNano()+700*minute {
+			timed++
+		}
+	}
+	if timed == 0 {
+		t.Error("no event tells of the time of a loss")
+	}
+}
+
+func onlyEvent(t *testing.T, path string) store.Event {
+	t.Helper()
+	db, err := store.Open(path, store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	var all []store.Event
+	for e, err := range db.Events(math.MinInt64, math.MaxInt64) {
+		if err != nil {
+			t.Fatal(err)
+		}
+		all = append(all, e)
+	}
+	if len(all) != 1 {
+		t.Fatalf("%d events, want 1: %+v", len(all), all)
+	}
+	return all[0]
 }
 
 // What has no time of its own, and what a damaged key tells, is not told as a date.
