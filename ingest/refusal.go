@@ -2,6 +2,8 @@ package ingest
 
 import (
 	"fmt"
+	"strings"
+	"unicode"
 	"unicode/utf8"
 )
 
@@ -23,8 +25,24 @@ func (r *Refusal) Error() string {
 	if r.Cut {
 		dots = "…"
 	}
+	if !isText(r.Payload) {
+		head := r.Payload[:min(len(r.Payload), shownBytes)]
+		if len(head) < len(r.Payload) {
+			dots = "…"
+		}
+		return fmt.Sprintf("tag %q: binary payload % x%s %s", r.Tag, head, dots, r.Detail)
+	}
 	return fmt.Sprintf("tag %q: payload %q%s %s", r.Tag, r.Payload, dots, r.Detail)
 }
+
+// isText reports whether people can read a payload, such as not one of Sparkplug B.
+func isText(payload string) bool {
+	return utf8.ValidString(payload) && !strings.ContainsFunc(payload, func(r rune) bool {
+		return unicode.IsControl(r) && !unicode.IsSpace(r)
+	})
+}
+
+const shownBytes = 12 // of a payload that is no text
 
 const shownPayload = 96 // bytes
 
