@@ -87,7 +87,7 @@ func notes(s *site.Site) []string {
 		all = append(all, notesOfBroker(&b)...)
 	}
 	all = append(append(all, idleTags(s)...), unstamped(s)...)
-	return append(append(all, outlasting(s)...), boundless(s)...)
+	return append(append(append(all, outlasting(s)...), boundless(s)...), uncorrected(s)...)
 }
 
 func notesOfBroker(b *site.Broker) []string {
@@ -156,6 +156,22 @@ func boundless(s *site.Site) []string {
 	}
 	return []string{fmt.Sprintf("tags.%s: %s without the largest flow that can be; where the register jumps, such as after its exchange, that is booked as if it had passed. Let counts tell it, such as largest: 40 m3/h",
 		strings.Join(names, ", "), one(names, "counts", "count"))}
+}
+
+// uncorrected are the loads whose flow is a root of a pressure, and whose density nobody
+// corrects unless the transmitter does.
+func uncorrected(s *site.Site) []string {
+	var all []string
+	for i := range s.Loads {
+		x := s.Loads[i].Stream
+		if x == nil || x.Flow.Constant() || x.CalibratedAt > 0 {
+			continue
+		}
+		if t := &s.Tags[x.Flow.Tag]; t.Signal != nil && t.Signal.Root {
+			all = append(all, fmt.Sprintf("loads.%s: %s is the root of a pressure, and without calibrated_at its flow is taken to be corrected for density at its source. If it is not, tell the density that the meter was reckoned for", s.Loads[i].Name, t.Name))
+		}
+	}
+	return all
 }
 
 // unstamped are the tags that report on change whose time nobody knows once a message has

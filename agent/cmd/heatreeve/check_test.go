@@ -3,6 +3,7 @@ package main
 import (
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 )
@@ -75,6 +76,31 @@ loads:
 	}
 	if n := strings.Count(out, "note:"); n != 5 {
 		t.Errorf("%d notes, want 5:\n%s", n, out)
+	}
+}
+
+// A meter by differential pressure whose density nobody corrects is told.
+func TestCheckNotesUncorrectedDensity(t *testing.T) {
+	text, err := os.ReadFile("../../../configs/marrowick-board-mill.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	path := filepath.Join(t.TempDir(), "plant.yaml")
+	bare := regexp.MustCompile(`,\s*calibrated_at: [0-9.]+ kg/m3`).ReplaceAllString(string(text), "")
+	if n := strings.Count(string(text), "calibrated_at:"); n == 0 || strings.Contains(bare, "calibrated_at:") {
+		t.Fatalf("the example has calibrated_at %d times, of which some are left", n)
+	}
+	for _, tt := range []struct {
+		text  string
+		notes int
+	}{{string(text), 0}, {bare, strings.Count(string(text), "calibrated_at:")}} {
+		if err := os.WriteFile(path, []byte(tt.text), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		status, out, errs := invoke("check", path)
+		if n := strings.Count(oneLine(out), "without calibrated_at its flow is taken to be corrected"); status != exitGood || errs != "" || n != tt.notes {
+			t.Errorf("status %d, %s; %d notes, want %d:\n%s", status, errs, n, tt.notes, out)
+		}
 	}
 }
 
