@@ -260,3 +260,16 @@ func TestKeptSiteFilesHoldNoSecret(t *testing.T) {
 		}
 	}
 }
+
+// Before the first figure since its start the agent says that there is none, and explains no
+// figure of 1970.
+func TestNoFigureYetIsNotExplained(t *testing.T) {
+	questions := make(chan question, 1)
+	s := &explains{site: parsed(t, benchSite), questions: questions}
+	name := s.site.Loads[0].Name
+	go func() { (<-questions).answer <- working.Subject{Site: s.site} }()
+	w, err := s.explain(t.Context(), Explanation{Load: name})
+	if w != nil || !errors.Is(err, errNoRecord) || !strings.Contains(err.Error(), name) {
+		t.Errorf("%v, %v", w, err)
+	}
+}

@@ -135,7 +135,7 @@ func (x *export) nothing() error {
 	if x.to != math.MaxInt64 {
 		err = fmt.Errorf("%w to %s", err, at(x.to))
 	}
-	return fmt.Errorf("%w; it goes up to %s", err, at(x.through))
+	return fmt.Errorf("%w; %s", err, upTo(time.Unix(0, x.through).In(x.zone)))
 }
 
 // whole is an error where not all could be read.

@@ -89,8 +89,16 @@ func noRecord(r *Report, chosen []string) error {
 	if !r.To.After(r.From) { // no end was given, and the history has ended before
 		end = "on"
 	}
-	return fmt.Errorf("%w of %s from %s %s; it goes up to %s",
-		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), end, wallClock(r.Accounted))
+	return fmt.Errorf("%w of %s from %s %s; %s",
+		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), end, upTo(r.Accounted))
+}
+
+// upTo tells how far a history goes.
+func upTo(t time.Time) string {
+	if t.UnixNano() <= 0 {
+		return "its time has not begun: no reading that tells it has been committed yet"
+	}
+	return "it goes up to " + wallClock(t)
 }
 
 func wallClock(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }

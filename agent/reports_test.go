@@ -57,6 +57,23 @@ func TestReportPage(t *testing.T) {
 	}
 }
 
+// A history whose time has not begun says so, and names no day of 1970.
+func TestReportBeforeTimeHasBegun(t *testing.T) {
+	db, err := store.Open(filepath.Join(t.TempDir(), HistoryFile), store.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer db.Close()
+	if _, err := db.IDs("load", []string{"hot-water"}); err != nil {
+		t.Fatal(err)
+	}
+	w := httptest.NewRecorder()
+	newReports(historyIn(t, db, "Europe/Dublin")).ServeHTTP(w, httptest.NewRequest(http.MethodGet, reportPath+"?from=2026-10-24", nil))
+	if w.Code != http.StatusNotFound || !strings.Contains(w.Body.String(), "its time has not begun") || strings.Contains(w.Body.String(), "1970") {
+		t.Errorf("%d %q", w.Code, w.Body)
+	}
+}
+
 // Queries survive the way to the agent.
 func TestQueryRoundTrip(t *testing.T) {
 	for _, demand := range []time.Duration{0, NoDemand, 20 * time.Minute} {
