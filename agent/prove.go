@@ -96,7 +96,7 @@ func listen(ctx context.Context, ears []*ear, length time.Duration, hear func([]
 			over = true
 		}
 		for _, e := range ears {
-			if err := e.fault(); err != nil {
+			if err := e.fault(over); err != nil {
 				return fmt.Errorf("%s: %w", e.broker.URL, err)
 			}
 			heard := e.take(time.Now().UnixNano())
@@ -112,9 +112,12 @@ func listen(ctx context.Context, ears []*ear, length time.Duration, hear func([]
 	}
 }
 
-// fault is why nothing can be heard.
-func (e *ear) fault() error {
+// fault is why nothing can be heard, or was up to the end, where it is over.
+func (e *ear) fault(over bool) error {
 	stats := e.session.Stats()
+	if over && stats.Connections == 0 && stats.Failures == 0 {
+		return errors.New("the broker has not answered yet; check host and port and whether it hangs, or listen for longer")
+	}
 	if stats.Connections == 0 && stats.Failures > 0 {
 		return errors.New(stats.LastError)
 	}

@@ -6,18 +6,25 @@ import (
 	"errors"
 	"io"
 	"net"
+	"regexp"
 	"strings"
 	"syscall"
 )
 
 // withAdvice is why no connection came about, in words, with what to do where that is known.
 func (b broker) withAdvice(err error) string {
-	why := strings.Replace(err.Error(), "tls: tls: ", "tls: ", 1)
+	why := strings.Replace(plainly(err), "tls: tls: ", "tls: ", 1)
 	if advice := b.advice(err); advice != "" {
 		why += "; " + advice
 	}
 	return why
 }
+
+// ours is our own end of a connection in an error of package net, another port each time.
+var ours = regexp.MustCompile(` \S+:\d+->`)
+
+// plainly is an error in words that are the same for each attempt that fails the same way.
+func plainly(err error) string { return ours.ReplaceAllString(err.Error(), " ") }
 
 // advice is what to do about a connection that did not come about; "" where nothing tells.
 func (b broker) advice(err error) string {
@@ -26,6 +33,7 @@ func (b broker) advice(err error) string {
 	var expired x509.CertificateInvalidError
 	var record tls.RecordHeaderError
 	var lookup *net.DNSError
+	var late net.Error
 	switch {
 	case errors.As(err, &authority):
 		return "give the certificates of its authority as ca"
@@ -40,6 +48,8 @@ func (b broker) advice(err error) string {
 		return "check the name of the broker's host"
 	case errors.Is(err, syscall.ECONNREFUSED):
 		return "check host and port, and that the broker runs and listens there"
+	case errors.As(err, &late) && late.Timeout():
+		return "nothing answers there in time: check host and port, the network on the way, and whether the broker hangs"
 	case errors.As(err, &record), b.tls && hungUp(err):
 		return "check that the port speaks TLS"
 	case hungUp(err):

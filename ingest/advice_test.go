@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"net"
+	"os"
 	"strings"
 	"testing"
 )
@@ -26,6 +27,18 @@ func deafPort(t *testing.T) (address string) {
 		}
 	}()
 	return l.Addr().String()
+}
+
+// An attempt that fails as the one before is not logged again, so its words do not change.
+func TestReasonWithoutOurPort(t *testing.T) {
+	read := func(port int) error {
+		end := func(port int) net.Addr { return &net.TCPAddr{IP: net.IPv4(127, 0, 0, 1), Port: port} }
+		return &net.OpError{Op: "read", Net: "tcp", Source: end(port), Addr: end(1883), Err: os.ErrDeadlineExceeded}
+	}
+	one, other := broker{}.withAdvice(read(54658)), broker{}.withAdvice(read(60072))
+	if want := "read tcp 127.0.0.1:1883: i/o timeout; nothing answers there in time"; one != other || !strings.HasPrefix(one, want) {
+		t.Errorf("%q and %q, want %q", one, other, want)
+	}
 }
 
 // Why no connection comes about is told with what to do.

@@ -159,7 +159,7 @@ func (s *Session) explain(err error) string {
 func (s *Session) lost(err error) {
 	why := "closed by the broker"
 	if err != nil {
-		why = err.Error()
+		why = plainly(err)
 	}
 	s.tally.update(func(st *Stats) {
 		st.Losses++

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"strings"
 	"time"
 
 	"heatreeve/agent"
@@ -26,7 +27,11 @@ be as it should be.
 
 // checkLive holds the site against its broker and tells what was found.
 func (c *call) checkLive(ctx context.Context, s *site.Site, length time.Duration) error {
-	fmt.Fprintf(c.stdout, "\nlistening to %s for %v\n", s.Broker.URL, length)
+	var from []string
+	for _, b := range s.AllBrokers() {
+		from = append(from, b.URL)
+	}
+	fmt.Fprintf(c.stdout, "\n%s\n", wrapped(fmt.Sprintf("listening to %s for %v", strings.Join(from, ", "), length), "  "))
 	r, err := agent.Prove(ctx, s, length, c.tellReadings(length))
 	if err != nil {
 		return err

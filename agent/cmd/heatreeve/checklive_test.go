@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"log/slog"
+	"net"
 	"os"
 	"path/filepath"
 	"strings"
@@ -74,11 +75,22 @@ func TestCheckLive(t *testing.T) {
 	}
 	defer quiet.Close()
 	status, out, errs = check(append(address, "\nfluids:", "\nbrokers: {air: {url: \""+quiet.URL()+"\"}}\n\nfluids:", "topic: creamery/air/TT-402,", "broker: air, topic: creamery/air/TT-402,")...)
+	if !strings.Contains(strings.Join(strings.Fields(out), " "), "listening to "+d.Site.Broker.URL+", "+quiet.URL()+" for 4s") {
+		t.Errorf("two brokers: %s", out)
+	}
 	if status != exitFailed || !strings.Contains(out, "FAULT TT-402: no message") || !strings.Contains(out, "hot-water: 64") || strings.Contains(out, "FAULT TT-401") {
 		t.Errorf("a tag on another broker: status %d, %s\n%s", status, errs, out)
 	}
 	if status, _, errs := check("mqtt://127.0.0.1:1883", "mqtt://127.0.0.1:1"); status != exitFailed || !strings.Contains(errs, "connection refused") {
 		t.Errorf("no broker: status %d, %q", status, errs)
+	}
+	mute, err := net.Listen("tcp", "127.0.0.1:0") // takes connections, and says nothing
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer mute.Close()
+	if status, _, errs := check("mqtt://127.0.0.1:1883", "mqtt://"+mute.Addr().String()); status != exitFailed || !strings.Contains(errs, "has not answered yet") {
+		t.Errorf("mute broker: status %d, %q", status, errs)
 	}
 	if status, _, errs := invoke("check", "site.yaml", "--for", "5s"); status != exitWrong || !strings.Contains(errs, "--for is for --live") {
 		t.Errorf("without --live: status %d, %q", status, errs)
