@@ -101,6 +101,14 @@ func TestReadingWithoutValue(t *testing.T) {
 			t.Errorf("does not say %s:\n%s", want, text)
 		}
 	}
+	var back Working
+	if err := json.Unmarshal(text, &back); err != nil {
+		t.Fatal(err)
+	}
+	again, err := json.Marshal(back)
+	if err != nil || string(again) != string(text) {
+		t.Errorf("read and written again, %v: %s, not %s", err, again, text)
+	}
 	if strings.Contains(string(text), "NaN") || strings.Count(string(text), "null") != 3 {
 		t.Errorf("%s", text)
 	}

@@ -62,16 +62,34 @@ type Line struct {
 	Reading *Sample `json:"reading,omitempty"`
 }
 
+// line is a Line as it stands in JSON, where a value that is none is null.
+type line struct {
+	plain
+	Value *float64 `json:"value"`
+}
+
+type plain Line
+
 // MarshalJSON writes null for a value that is none.
 func (l Line) MarshalJSON() ([]byte, error) {
-	type line Line
+	x := line{plain: plain(l)}
 	if !math.IsNaN(l.Value) {
-		return json.Marshal(line(l))
+		x.Value = &l.Value
 	}
-	return json.Marshal(struct {
-		line
-		Value *float64 `json:"value"`
-	}{line: line(l)})
+	return json.Marshal(x)
+}
+
+// UnmarshalJSON reads what MarshalJSON writes.
+func (l *Line) UnmarshalJSON(text []byte) error {
+	var x line
+	if err := json.Unmarshal(text, &x); err != nil {
+		return err
+	}
+	*l = Line(x.plain)
+	if l.Value = math.NaN(); x.Value != nil {
+		l.Value = *x.Value
+	}
+	return nil
 }
 
 // Sample is a reading that was used, or the last one that was seen.
