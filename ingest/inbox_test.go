@@ -214,3 +214,21 @@ func TestRoomOfABurstIsGivenBack(t *testing.T) {
 		t.Errorf("took %d, room for %d left; want 1, and %d at most", len(batch), cap(b.readings), 4*together)
 	}
 }
+
+// Sessions that share a channel all tell by it.
+func TestSessionsShareWhatTellsThatMessagesWait(t *testing.T) {
+	reached := make(chan struct{}, 1)
+	for _, id := range []string{"one", "two"} {
+		s, err := New([]Tag{number("a")}, Options{URL: "mqtt://127.0.0.1:1", ClientID: id, Reached: reached})
+		if err != nil {
+			t.Fatal(err)
+		}
+		s.TellAt(1)
+		put(t, s.inbox, &message{}, 1)
+		select {
+		case <-reached:
+		default:
+			t.Errorf("session %s told nothing", id)
+		}
+	}
+}

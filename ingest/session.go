@@ -66,6 +66,9 @@ func New(tags []Tag, o Options) (*Session, error) {
 	if o.Rebirths {
 		decoder.plug.start(decoder.ahead, rand.Float64)
 	}
+	if o.Reached != nil {
+		s.inbox.reached = o.Reached
+	}
 	if o.Presence != nil {
 		s.will = slices.Clone(o.Presence.Offline(o.Now()))
 	}
