@@ -19,3 +19,14 @@ func TestSilentMetric(t *testing.T) {
 		t.Errorf("%+v", f)
 	}
 }
+
+// Where other metrics of the source come, a birth has told their names: its own is wrong.
+func TestMetricOfAWrongName(t *testing.T) {
+	s, trial := bench(t, strings.NewReplacer("topic: a/TT-1, unit: °C, value: /v, time: /ts", "sparkplug: plant/gw/loop, metric: T/inn, unit: °C",
+		"topic: a/TT-2, unit: °C, value: /v, time: /ts", "sparkplug: plant/gw/loop, metric: T/out, unit: °C").Replace(file))
+	sound.send(s, trial, func(tag string, _ *proving.Heard) bool { return tag != "TT-1" })
+	r := trial.Tell(60, make([][]proving.Refused, len(s.Tags)))
+	if all := r.Tags[0].Findings; len(all) != 1 || all[0].Level != proving.Fault || !strings.Contains(all[0].Text, "check its name, letter by letter") {
+		t.Errorf("%+v", all)
+	}
+}

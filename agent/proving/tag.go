@@ -67,6 +67,8 @@ type Tag struct {
 	Behind      float64 // median of how far stamps are behind arrivals, s
 	Jitter      float64 // half of the span of the middle 80 % of it, s
 	Findings    []Finding
+
+	siblings int // tags of the same Sparkplug source that were heard
 }
 
 // Doubtful tells whether the newest reading is not good.
@@ -78,6 +80,7 @@ func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
 	if m := declared.Metric; m != nil {
 		told.Topic, told.Stamped = strings.TrimSpace(m.Source()+" "+m.Name), m.Name != ""
 	}
+	told.siblings = t.siblings(i)
 	if heard.live > 1 {
 		told.Every = float64(heard.last-heard.first) / float64(heard.live-1) / 1e9
 	}
@@ -92,6 +95,18 @@ func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
 	}
 	told.Findings = heard.findings(declared, &told, seconds, refused, time.Duration(t.site.Timing.Ahead))
 	return told
+}
+
+// siblings counts the other metrics of the same Sparkplug source that were heard.
+func (t *Trial) siblings(i int) int {
+	n := 0
+	own := t.site.Tags[i].Metric
+	for k := range t.site.Tags {
+		if m := t.site.Tags[k].Metric; own != nil && m != nil && m.Name != "" && k != i && m.Source() == own.Source() && t.tags[k].live > 0 {
+			n++
+		}
+	}
+	return n
 }
 
 // shown is a value in the unit that its tag has in the file, gauge pressures as such.
@@ -123,6 +138,8 @@ func (t *tagTrial) findings(declared *site.Tag, told *Tag, seconds float64, refu
 	case len(refused) > 0:
 	case told.Kept > 0 && !silent:
 		add(Fault, "only a message that the broker had kept; nothing live in %.0f s", seconds)
+	case declared.Metric != nil && told.siblings > 0:
+		add(Fault, "nothing by Sparkplug from %q in %.0f s, though other metrics of its source came: check its name, letter by letter, or listen for longer", told.Topic, seconds)
 	case declared.Metric != nil:
 		add(Fault, "nothing by Sparkplug from %q in %.0f s; metrics sent by alias are known from the birth of their node on, so let it be born while this listens, or let commands: rebirth of the broker ask for it", told.Topic, seconds)
 	case silent:

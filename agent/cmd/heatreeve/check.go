@@ -175,11 +175,11 @@ func uncorrected(s *site.Site) []string {
 }
 
 // unstamped are the tags that report on change whose time nobody knows once a message has
-// waited at the broker.
+// waited at the broker. Those by Sparkplug have the time of their metric.
 func unstamped(s *site.Site) []string {
 	var all []string
 	for _, t := range s.Tags {
-		if t.OnChange && t.Time == "" {
+		if t.OnChange && t.Time == "" && t.Metric == nil {
 			all = append(all, fmt.Sprintf("tags.%s: reports on change without a time of its own; what the broker has kept of it is refused, so after a start nothing is known until it changes", t.Name))
 		}
 	}
@@ -189,7 +189,7 @@ func unstamped(s *site.Site) []string {
 		}
 	}
 	for i, t := range s.Tags {
-		if l := t.Liveness; l != nil && !l.Kept && t.Time == "" {
+		if l := t.Liveness; l != nil && !l.Kept && t.Time == "" && t.Metric == nil {
 			all = append(all, fmt.Sprintf("%s: has no time of its own; after an outage of the broker or the agent %s taken to have been dead meanwhile", t.Name, told(s, i)))
 		}
 	}

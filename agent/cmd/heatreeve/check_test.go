@@ -79,6 +79,13 @@ loads:
 	}
 }
 
+// What comes by Sparkplug brings its time, and no broker keeps it: nothing is noted of that.
+func TestCheckOfSparkplugIsWithoutNotes(t *testing.T) {
+	if status, out, errs := invoke("check", "../../../configs/merrow-dye-works.yaml"); status != exitGood || strings.Contains(out, "note:") {
+		t.Errorf("status %d, %s\n%s", status, errs, out)
+	}
+}
+
 // A meter by differential pressure whose density nobody corrects is told.
 func TestCheckNotesUncorrectedDensity(t *testing.T) {
 	text, err := os.ReadFile("../../../configs/marrowick-board-mill.yaml")
