@@ -22,6 +22,8 @@ type intake struct {
 	stats    ingest.Stats
 	window   window
 	told     bool // that the broker waits
+	rebirths bool // nodes may be asked for their births
+	unborn   bool // what waits for a birth has been told
 	hold     hold // while the disk takes nothing
 	rate     rate // of messages, while it does
 }
@@ -33,7 +35,7 @@ func newIntakes(s *site.Site, o Options, reached chan struct{}) ([]*intake, erro
 	var faults []error
 	signals := signalsOf(s)
 	for i, b := range s.AllBrokers() {
-		f := &intake{name: b.Name, queue: b.Queue}
+		f := &intake{name: b.Name, queue: b.Queue, rebirths: b.Rebirths}
 		var tags []ingest.Tag
 		for k := range s.Tags {
 			if s.Tags[k].Broker == i {
@@ -57,6 +59,20 @@ func (f *intake) look(log *slog.Logger) bool {
 		log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", f.label("messages", f.window.acked)...)
 	}
 	return commit
+}
+
+// tellUnborn tells once of metrics that come by aliases alone, which nobody has told: where
+// the site does not let the agent ask, they may wait for days.
+func (f *intake) tellUnborn(log *slog.Logger) {
+	if f.unborn || f.stats.Sparkplug.UnknownAlias == 0 {
+		return
+	}
+	f.unborn = true
+	what := "let it ask with commands: rebirth of the broker, or have the node send its births again"
+	if f.rebirths {
+		what = "births are asked for"
+	}
+	log.Warn("Sparkplug metrics come by aliases of a birth that the agent has not heard, and their tags wait for the next one: "+what, f.label()...)
 }
 
 // label names the broker behind other fields of a log line, where there are several.

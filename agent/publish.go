@@ -38,6 +38,7 @@ func (a *Agent) publish(r *rhythm) {
 		v.Brokers = append(v.Brokers, brokerView(f))
 	}
 	for _, f := range r.intakes {
+		f.tellUnborn(a.o.Log)
 		for k, i := range f.tags {
 			v.Tags[i] = tagView(&a.site.Tags[i], s.Tags[i], f.stats.Tags[k])
 		}
