@@ -68,13 +68,18 @@ func change(n *yaml.Node, path string, write func(format string, args ...any)) {
 			write("%s is without item %d", path, i)
 		}
 		n.Content = content
+		seen := make(map[string]bool)
 		for i, item := range content {
-			change(item, fmt.Sprintf("%s[%d]", path, i), write)
+			if s := fmt.Sprint(item.Kind, shape(item), len(item.Content)); !seen[s] {
+				seen[s] = true
+				change(item, fmt.Sprintf("%s[%d]", path, i), write)
+			}
 		}
 	}
 }
 
-// shape is what a mapping's keys are. Of tags with the same keys, one is changed.
+// shape is what a mapping's keys are. Of tags with the same keys, one is changed, and so it
+// is with items of a list.
 func shape(n *yaml.Node) string {
 	var keys string
 	if n.Kind == yaml.MappingNode {
@@ -85,7 +90,8 @@ func shape(n *yaml.Node) string {
 	return keys
 }
 
-// added are keys that one block or another has, and one that none has.
+// added are keys that one block or another has, and one that none has. Each block gets a
+// third of them, and those that follow it the others.
 var added = []string{
 	"colour", "time_unit", "range", "password_env", "key", "takes", "gives", "meter_at", "allow", "uncertainty", "table", "propylene glycol",
 	"counts", "reports", "vessel", "samples", "signal", "quality", "stuck", "spikes", "running",
@@ -97,8 +103,8 @@ func changeKeys(n *yaml.Node, path string, write func(format string, args ...any
 		n.Content = slices.Delete(slices.Clone(content), i, i+2)
 		write("%s is without %s", path, content[i].Value)
 	}
-	for _, key := range added {
-		if slices.ContainsFunc(content, func(k *yaml.Node) bool { return k.Value == key }) {
+	for i, key := range added {
+		if (i+len(path))%3 != 0 || slices.ContainsFunc(content, func(k *yaml.Node) bool { return k.Value == key }) {
 			continue
 		}
 		n.Content = append(slices.Clone(content), &yaml.Node{Kind: yaml.ScalarNode, Value: key}, &yaml.Node{Kind: yaml.ScalarNode, Value: "heat"})

@@ -53,7 +53,11 @@ const live = () => {
   const death = encodePayload({timestamp: Date.now(), metrics: [{name: 'bdSeq', type: 'Int64', value: session, timestamp: Date.now()}]})
   const mine = node = mqtt.connect(url, {reconnectPeriod: 0, keepalive: 60, will: {topic: 'spBv1.0/plant/NDEATH/gw 1', payload: death, qos: 1, retain: false}})
   mine.on('connect', () => {
-    mine.subscribe('spBv1.0/plant/NCMD/gw 1', () => { births(Date.now()); mine.born = true })
+    mine.subscribe('spBv1.0/plant/NCMD/gw 1', () => {
+      births(Date.now())
+      mine.born = true
+      mine.publish('plant/born', '1', {qos: 1}, () => console.log('born')) // the broker has had the births by then
+    })
   })
   mine.on('message', (topic, payload) => {
     const asked = decodePayload(payload).metrics.some(m => m.name === 'Node Control/Rebirth' && m.type === 'Boolean' && m.value === true)
@@ -131,13 +135,20 @@ func startEdge(t *testing.T, b *broker) *edgeNode {
 	}
 	t.Cleanup(func() { w.Close(); r.Close() })
 	p := startReading(t, r, program(t, "node", "nodejs"), script, "mqtt://127.0.0.1:"+strconv.Itoa(b.port))
-	eventually(t, "the edge node runs", func() error {
-		if !strings.Contains(p.out.String(), "ready") {
-			return fmt.Errorf("it says %q", p.out.String())
+	e := &edgeNode{p, w}
+	e.says(t, "ready")
+	return e
+}
+
+// says waits until the node has said a word.
+func (e *edgeNode) says(t *testing.T, word string) {
+	t.Helper()
+	eventually(t, "the edge node says "+word, func() error {
+		if !strings.Contains(e.out.String(), word) {
+			return fmt.Errorf("it says %q", e.out.String())
 		}
 		return nil
 	})
-	return &edgeNode{p, w}
 }
 
 // TestSparkplugByAnotherPublisher: births, data by alias and deaths of a publisher that is
@@ -146,6 +157,7 @@ func TestSparkplugByAnotherPublisher(t *testing.T) {
 	b := startBroker(t)
 	edge := startEdge(t, b)
 	edge.tell(t, "live") // before the agent, which misses the birth and asks for another
+	edge.says(t, "born")
 	a := startAgent(t, b.site(t, edgeSite))
 	a.bothMeasured(t)
 	if n := strings.Count(edge.out.String(), "asked"); n != 1 || strings.Contains(edge.out.String(), "strange") {
