@@ -230,13 +230,14 @@ func (j judge) witness(pipes [2]string, power float64) {
 	ours := [2]float64{j.minutes[0][j.load].compared, j.minutes[1][j.load].compared}
 	tag := &j.site.Tags[j.declared.Witness.Tag]
 	apart := math.Abs(ours[0] - ours[1])
-	least := 3 * (tag.Resolution + float64(j.cfg.Grid)/1e9*math.Abs(j.told.Figure.Duty))
+	heard := &j.tags[j.declared.Witness.Tag]
+	least := 3 * (heard.resolution(tag.Resolution) + float64(j.cfg.Grid)/1e9*math.Abs(j.told.Figure.Duty))
 	switch off := [2]float64{math.Abs(counted - ours[0]), math.Abs(counted - ours[1])}; {
 	case counted != 0 && min(off[0], off[1]) > max(least, apart):
 		j.add(Note, "its witness %s agrees with neither: off by %s and %s", tag.Name, percent(off[0]/counted), percent(off[1]/counted))
 	case counted == 0 || apart < least:
 		// Spans of a witness begin and end once a minute, and not before it has counted.
-		enough := max(least/power, 3*float64(j.tags[j.declared.Witness.Tag].gap)/1e9) + 120
+		enough := max(least/power, 3*float64(heard.gap)/1e9) + 120
 		j.add(Note, "its witness %s cannot tell yet which pipe is right: listen for %.0f minutes", tag.Name, math.Ceil(enough/60))
 	case off[1] < apart/3 && off[0] > off[1]:
 		j.add(Fault, "its witness %s agrees with the %s pipe, and not with the %s pipe of the file (off by %s against %s): check where the meter sits",

@@ -2,6 +2,7 @@ package proving_test
 
 import (
 	"fmt"
+	"math"
 	"strings"
 	"testing"
 
@@ -159,6 +160,13 @@ func TestMistakes(t *testing.T) {
 			return strings.Replace(unitOf("a/TT-2", "°C", "°F")(s), "allow: 5 %", "allow: 5 %, inlet: 110 °C, outlet: 70 °C", 1)
 		}, want: fault("hall", "TT-2 shows 70 °F; in °C that would be at the design's 70 °C: check its unit")},
 		{name: "large", plant: func(p *plant) { p.flow *= 60 }, want: note("hall", "with the meter in the outlet pipe, as the file says, 27418 kW")},
+		{name: "witness in steps that the file does not tell", plant: func(p *plant) { p.heat, p.seconds = 444.4e3, 600 }, edit: func(s string) string { return strings.Replace(s, ", resolution: 0.01 kWh", "", 1) },
+			change: func(tag string, h *proving.Heard) bool {
+				if tag == "ET-1" {
+					h.Value = math.Floor(h.Value/36e6) * 36e6
+				}
+				return true
+			}, want: note("hall", "its witness ET-1 cannot tell yet which pipe is right: listen for 148 minutes")},
 		{name: "zero offset", plant: func(p *plant) { p.flow = 0.15 }, want: note("hall", "if the pump is off, 0.15 m3/h of FT-1 is its zero offset")},
 		{name: "no difference", plant: func(p *plant) { p.outlet = 109.9 }, want: note("hall", "inlet and outlet differ by -0.10 K")},
 		{name: "far from design", edit: design("9000 kW"), want: note("hall", "the duty is 0.0508 times the design")},

@@ -21,6 +21,9 @@ type tagTrial struct {
 	gap         int64                // longest between two stamps
 	newest      Heard                // by stamp, live or kept
 	min, max    float64
+	value       float64 // of the last live reading
+	repeats     bool    // one came with the value of the one before
+	step        float64 // smallest rise from one to the next, 0 where there was none
 	lags        []int64
 }
 
@@ -39,6 +42,7 @@ func (t *tagTrial) hear(h Heard) {
 		return
 	}
 	t.live++
+	t.climb(h.Value)
 	switch {
 	case t.live == 1:
 		t.first, t.last, t.min, t.max = h.At, h.At, h.Value, h.Value
@@ -52,6 +56,27 @@ func (t *tagTrial) hear(h Heard) {
 	if h.Stamped && len(t.lags) < mostLags {
 		t.lags = append(t.lags, h.Arrival-h.At)
 	}
+}
+
+// climb notes by how much a register rises.
+func (t *tagTrial) climb(x float64) {
+	rise := x - t.value
+	switch t.value = x; {
+	case t.live == 1:
+	case rise == 0:
+		t.repeats = true
+	case rise > 0 && (t.step == 0 || rise < t.step):
+		t.step = rise
+	}
+}
+
+// resolution is the step of a register: as the file declares it, or as seen, where it stood
+// still at times.
+func (t *tagTrial) resolution(declared float64) float64 {
+	if declared == 0 && t.repeats {
+		return t.step
+	}
+	return declared
 }
 
 // Tag is what a trial found out about one tag.
