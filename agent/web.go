@@ -67,9 +67,20 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 			line := fmt.Sprintf("%-32s %-10s %20s  %s", s.Loads[i].Name, verdict, duty, remark(&figure))
 			fmt.Fprintln(w, strings.TrimRight(line, " "))
 		}
-		fmt.Fprint(w, "\n±: twice the standard uncertainty\n\n")
+		fmt.Fprint(w, "\n±: twice the standard uncertainty\n")
+		frontKept(w, s)
+		fmt.Fprintln(w)
 	}
 	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/explain  the working of a figure as JSON, such as /explain?load=NAME\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
+}
+
+// frontKept tells what the broker had kept of tags that have said nothing since.
+func frontKept(w io.Writer, s *view.Snapshot) {
+	for i := range s.Tags {
+		if t := &s.Tags[i]; t.Kept != "" {
+			fmt.Fprintf(w, "%s: the broker had kept %s, of an age that nobody knows; it is in no figure\n", t.Name, t.Kept)
+		}
+	}
 }
 
 // remark is why there is no figure, or what to bear in mind with it.

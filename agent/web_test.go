@@ -21,15 +21,19 @@ func TestFrontPage(t *testing.T) {
 	doubted := s.Loads[1]
 	doubted.Name, doubted.Figure.Mark, doubted.Figure.By = "chiller", quality.Stuck, "TT-2"
 	s.Loads = append(s.Loads, doubted)
+	s.Tags = []view.Tag{{Name: "TT-8", Newest: 1}, {Name: "TT-9", Kept: "21.5 °C"}}
 	page := func(now int64) string {
 		var b bytes.Buffer
 		front(&b, s, wall(now))
 		return strings.Join(strings.Fields(b.String()), " ")
 	}
-	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 ± 0.7 kW sensible part only: coil", `chiller holding 40.8 ± 0.7 kW tag "TT-2" is uncertain: stuck; sensible part only: coil`} {
+	for _, want := range []string{"Heatreeve at Mill", "hall blind - TT-1 is old", "cooler holding 40.8 ± 0.7 kW sensible part only: coil", `chiller holding 40.8 ± 0.7 kW tag "TT-2" is uncertain: stuck; sensible part only: coil`, "TT-9: the broker had kept 21.5 °C, of an age that nobody knows"} {
 		if got := page(clock.UnixNano()); !strings.Contains(got, want) {
 			t.Errorf("page %q, want %q in it", got, want)
 		}
+	}
+	if got := page(clock.UnixNano()); strings.Contains(got, "TT-8") {
+		t.Errorf("page %q tells of a tag that nothing was kept of", got)
 	}
 	if got := page(clock.UnixNano() + 1); strings.Contains(got, "sensible") || !strings.Contains(got, "cooler blind - no reading") {
 		t.Errorf("page %q after the inputs ran out", got)

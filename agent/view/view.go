@@ -52,8 +52,11 @@ type Witness struct {
 
 // Tag is one tag, with what became of its messages since the agent started.
 type Tag struct {
-	Name     string
-	Newest   int64 // stamp of the newest reading; 0 before the first
+	Name   string
+	Newest int64 // stamp of the newest reading; 0 before the first
+	// Kept is the value, with its unit, of a message without a stamp that the broker had kept,
+	// before the first reading: of an age that nobody knows, and in no figure. "" for none.
+	Kept     string
 	MaxAge   int64 // how long a reading holds, ns; 0 for as long as its source is alive
 	Accepted uint64
 	Late     uint64    // arrived after their interval was accounted for
