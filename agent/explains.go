@@ -4,7 +4,6 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
-	"io"
 	"net/http"
 	"time"
 
@@ -121,7 +120,7 @@ func (a *Agent) answer(r *rhythm, q question) {
 // [*QueryError].
 func Explain(ctx context.Context, data string, q Explanation) (w *working.Working, err error) {
 	err = reach(data, func(a address) (err error) {
-		w, err = askExplanation(ctx, a, q)
+		w, err = request[working.Working](ctx, a, explainPath, q.values(), explainTime, explanationBytes)
 		return err
 	}, func(h history) (err error) {
 		w, err = h.explain(ctx, q)
@@ -131,25 +130,4 @@ func Explain(ctx context.Context, data string, q Explanation) (w *working.Workin
 		return nil, err
 	}
 	return w, nil
-}
-
-// askExplanation has the agent at a explain.
-func askExplanation(ctx context.Context, a address, q Explanation) (w *working.Working, err error) {
-	ctx, cancel := context.WithTimeout(ctx, explainTime+10*time.Second)
-	defer cancel()
-	err = a.get(ctx, explainPath, q.values(), func(resp *http.Response) error {
-		body, err := io.ReadAll(io.LimitReader(resp.Body, explanationBytes))
-		switch {
-		case err != nil:
-			return fmt.Errorf("agent at %s: %w", a.hostPort, err)
-		case resp.StatusCode != http.StatusOK:
-			return refusal(resp.StatusCode, body)
-		}
-		w = new(working.Working)
-		if err := json.Unmarshal(body, w); err != nil {
-			return fmt.Errorf("agent at %s: its answer of %d bytes: %w", a.hostPort, len(body), err)
-		}
-		return nil
-	})
-	return w, err
 }

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"net/http"
+	"net/url"
 	"time"
 )
 
@@ -29,28 +30,34 @@ func Inquire(ctx context.Context, data string, q Query) (r *Report, err error) {
 }
 
 // ask has the agent at a answer.
-func ask(ctx context.Context, a address, q Query) (r *Report, err error) {
-	ctx, cancel := context.WithTimeout(ctx, reportTime+10*time.Second)
+func ask(ctx context.Context, a address, q Query) (*Report, error) {
+	return request[Report](ctx, a, reportPath, q.values(), reportTime, answerBytes)
+}
+
+// request has the agent at a answer a path, which it does within the time, by at most so
+// many bytes of JSON.
+func request[T any](ctx context.Context, a address, path string, values url.Values, within time.Duration, most int64) (answer *T, err error) {
+	ctx, cancel := context.WithTimeout(ctx, within+10*time.Second)
 	defer cancel()
-	err = a.get(ctx, reportPath, q.values(), func(resp *http.Response) error {
-		body, err := io.ReadAll(io.LimitReader(resp.Body, answerBytes))
+	err = a.get(ctx, path, values, func(resp *http.Response) error {
+		body, err := io.ReadAll(io.LimitReader(resp.Body, most))
 		if err != nil {
 			return fmt.Errorf("agent at %s: %w", a.hostPort, err)
 		}
-		r, err = understand(a, resp.StatusCode, body)
+		answer, err = understand[T](a, resp.StatusCode, body)
 		return err
 	})
-	return r, err
+	return answer, err
 }
 
 // understand reads an agent's answer.
-func understand(a address, status int, body []byte) (*Report, error) {
+func understand[T any](a address, status int, body []byte) (*T, error) {
 	if status != http.StatusOK {
 		return nil, refusal(status, body)
 	}
-	r := new(Report)
-	if err := json.Unmarshal(body, r); err != nil {
+	answer := new(T)
+	if err := json.Unmarshal(body, answer); err != nil {
 		return nil, fmt.Errorf("agent at %s: its answer of %d bytes: %w", a.hostPort, len(body), err)
 	}
-	return r, nil
+	return answer, nil
 }

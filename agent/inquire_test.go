@@ -139,7 +139,7 @@ func TestAskTheAgent(t *testing.T) {
 		t.Errorf("another program: %v", err)
 	}
 	for body, want := range map[string]string{"{": "its answer of 1 bytes", "": "its answer of 0 bytes"} {
-		if _, err := understand(a, http.StatusOK, []byte(body)); err == nil || !strings.Contains(err.Error(), want) {
+		if _, err := understand[Report](a, http.StatusOK, []byte(body)); err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("answer %q: %v", body, err)
 		}
 	}

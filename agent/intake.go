@@ -36,17 +36,23 @@ func newIntakes(s *site.Site, o Options, reached chan struct{}) ([]*intake, erro
 	signals := signalsOf(s)
 	for i, b := range s.AllBrokers() {
 		f := &intake{name: b.Name, queue: b.Queue, rebirths: b.Rebirths}
-		var tags []ingest.Tag
-		for k := range s.Tags {
-			if s.Tags[k].Broker == i {
-				f.tags, tags = append(f.tags, k), append(tags, signals[k])
-			}
-		}
+		var on []ingest.Tag
+		f.tags, on = onBroker(s, signals, i)
 		var err error
-		f.session, err = newSession(s, b, tags, o, reached)
+		f.session, err = newSession(s, b, on, o, reached)
 		intakes, faults = append(intakes, f), append(faults, err)
 	}
 	return intakes, errors.Join(faults...)
+}
+
+// onBroker are the tags of the site that are on one of its brokers, and their signals.
+func onBroker(s *site.Site, signals []ingest.Tag, broker int) (tags []int, on []ingest.Tag) {
+	for k := range s.Tags {
+		if s.Tags[k].Broker == broker {
+			tags, on = append(tags, k), append(on, signals[k])
+		}
+	}
+	return tags, on
 }
 
 // look takes in how the broker stands to its limit of messages in flight, and reports

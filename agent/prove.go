@@ -64,17 +64,13 @@ func newEars(s *site.Site) ([]*ear, error) {
 	signals := signalsOf(s)
 	for i, b := range s.AllBrokers() {
 		e := &ear{broker: b}
-		var tags []ingest.Tag
-		for k := range s.Tags {
-			if s.Tags[k].Broker == i {
-				e.tags, tags = append(e.tags, k), append(tags, signals[k])
-			}
-		}
+		var on []ingest.Tag
+		e.tags, on = onBroker(s, signals, i)
 		o := connectionOf(b)
 		o.ClientID, o.Transient = "heatreeve-check-"+rand.Text()[:8], true
 		o.Ahead, o.Log, o.Rebirths, o.Subscribe = s.Timing.Ahead, slog.New(slog.DiscardHandler), b.Rebirths, b.Subscribe
 		var err error
-		if e.session, err = ingest.New(tags, o); err != nil {
+		if e.session, err = ingest.New(on, o); err != nil {
 			return nil, fmt.Errorf("session with %s: %w", b.Called(), err)
 		}
 		ears = append(ears, e)

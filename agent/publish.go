@@ -1,7 +1,6 @@
 package agent
 
 import (
-	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -116,21 +115,13 @@ func tagView(tag *site.Tag, t loads.TagState, s ingest.TagStats) view.Tag {
 		v.Doubted = append(v.Doubted, view.Doubt{Reason: d.Mark.String(), Count: d.Readings})
 	}
 	if v.Newest == 0 && !math.IsNaN(s.Retained) {
-		v.Kept = inUnit(tag, s.Retained)
+		v.Kept = tag.Show(s.Retained)
 	}
 	v.Refused = noRefusals
 	if t.Crowded > 0 || s.Refused != (ingest.TagStats{}).Refused {
 		v.Refused = refusals(&s, t.Crowded)
 	}
 	return v
-}
-
-// inUnit is an SI value in the unit that its tag has in the file, a gauge pressure as such.
-func inUnit(tag *site.Tag, si float64) string {
-	if tag.Unit.Gauge {
-		si -= tag.Offset
-	}
-	return fmt.Sprintf("%.6g %s", tag.Unit.Of(si), tag.Unit.Symbol)
 }
 
 // noRefusals are those of the tags that have none, which are most of them at each beat.

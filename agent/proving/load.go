@@ -61,9 +61,9 @@ func (j judge) rest() {
 		return
 	}
 	tag, x := &j.site.Tags[src.Tag], j.tags[src.Tag].newest.Value
-	j.add(Note, "%s shows %s, below idle_below: no duty to judge; try again while it runs", tag.Name, shown(tag, x))
+	j.add(Note, "%s shows %s, below idle_below: no duty to judge; try again while it runs", tag.Name, tag.Show(x))
 	if x != 0 && math.Abs(x) > tag.Accuracy.HalfWidth(0) {
-		j.add(Note, "if the pump is off, %s of %s is its zero offset: have its zero set", shown(tag, x), tag.Name)
+		j.add(Note, "if the pump is off, %s of %s is its zero offset: have its zero set", tag.Show(x), tag.Name)
 	}
 }
 
@@ -151,13 +151,13 @@ func (j judge) pressure(tag *site.Tag, p float64) {
 	fits := func(p float64) bool { return design > 0 && near(p, design, 0.2*air) }
 	switch {
 	case !tag.Unit.Gauge && fits(p+air) && !fits(p):
-		j.add(Fault, "%s shows %s, which is the design's pressure if it is gauge: write its unit with a g, as in barg", tag.Name, shown(tag, p))
+		j.add(Fault, "%s shows %s, which is the design's pressure if it is gauge: write its unit with a g, as in barg", tag.Name, tag.Show(p))
 	case tag.Unit.Gauge && fits(p-air) && !fits(p):
-		j.add(Fault, "%s shows %s, which is the design's pressure if it is absolute: write its unit without the g, as in bar", tag.Name, shown(tag, p))
+		j.add(Fault, "%s shows %s, which is the design's pressure if it is absolute: write its unit without the g, as in bar", tag.Name, tag.Show(p))
 	case !tag.Unit.Gauge && p < 0.9*air:
-		j.add(Note, "%s shows %s absolute, below the air pressure of %.4g kPa: gauge, perhaps? Then write its unit with a g, as in barg", tag.Name, shown(tag, p), air/1e3)
+		j.add(Note, "%s shows %s absolute, below the air pressure of %.4g kPa: gauge, perhaps? Then write its unit with a g, as in barg", tag.Name, tag.Show(p), air/1e3)
 	case tag.Unit.Gauge && p < 0.9*air:
-		j.add(Note, "%s shows %s gauge, below the air pressure: check its unit", tag.Name, shown(tag, p))
+		j.add(Note, "%s shows %s gauge, below the air pressure: check its unit", tag.Name, tag.Show(p))
 	}
 }
 
@@ -188,7 +188,7 @@ func (j judge) temperatures() {
 		}
 		for _, u := range unit.Named(unit.Temperature) {
 			if near(u.SI(tag.Unit.Of(shows)), at.design, closeTo) {
-				j.add(Fault, "%s shows %s; in %s that would be at the design's %.4g °C: check its unit", tag.Name, shown(tag, shows), u.Symbol, at.design-273.15)
+				j.add(Fault, "%s shows %s; in %s that would be at the design's %.4g °C: check its unit", tag.Name, tag.Show(shows), u.Symbol, at.design-273.15)
 				break
 			}
 		}

@@ -111,7 +111,7 @@ func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
 	}
 	if heard.live+heard.kept > 0 {
 		told.Has, told.Value, told.Mark = true, heard.newest.Value, heard.newest.Mark
-		told.Shown = shown(declared, told.Value)
+		told.Shown = declared.Show(told.Value)
 	}
 	if lags := slices.Sorted(slices.Values(heard.lags)); len(lags) > 0 {
 		n := len(lags)
@@ -132,11 +132,6 @@ func (t *Trial) siblings(i int) int {
 		}
 	}
 	return n
-}
-
-// shown is a value in the unit that its tag has in the file, gauge pressures as such.
-func shown(t *site.Tag, si float64) string {
-	return fmt.Sprintf("%.6g %s", (si-t.Offset)/t.Scale, t.Unit.Symbol)
 }
 
 // wanted is how many equal readings in a row look stuck.

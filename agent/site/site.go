@@ -17,6 +17,7 @@
 package site
 
 import (
+	"fmt"
 	"time"
 
 	"heatreeve/thermo"
@@ -88,6 +89,14 @@ type Tag struct {
 	// Liveness is set of a tag that no load may choose: it stands behind those that the
 	// file declares, under the name of its topic or Sparkplug source, one for each.
 	Liveness *Liveness
+}
+
+// Show writes an SI value in the tag's unit, a gauge pressure as such, with six digits.
+func (t *Tag) Show(si float64) string {
+	if t.Unit.Gauge {
+		si -= t.Offset
+	}
+	return fmt.Sprintf("%.6g %s", t.Unit.Of(si), t.Unit.Symbol)
 }
 
 // Holds is how long a reading of the tag holds; 0 where it does as long as its source is
