@@ -34,8 +34,12 @@ let node, session = 0, seq = 0
 const send = (kind, below, payload, qos = 0) => {
   node.publish('spBv1.0/plant/' + kind + '/gw 1' + below, encodePayload({...payload, seq: seq++ % 256}), {qos})
 }
-const births = ms => {
+const beside = (ms, x) => {
+  for (const [name, value] of Object.entries(x)) plain.publish('plant/' + name, JSON.stringify({v: value, ts: ms}), {qos: 1})
+}
+const births = ms => { // a birth carries values too, so these have their JSON
   const x = read(ms)
+  beside(ms, x)
   seq = 0
   send('NBIRTH', '', {timestamp: ms, metrics: [
     {name: 'bdSeq', type: 'Int64', value: session, timestamp: ms},
@@ -47,7 +51,6 @@ const births = ms => {
     {name: 'T/in', alias: 11, type: 'Int8', value: x.inlet, timestamp: ms},
     {name: 'T/out', alias: 12, type: 'Double', value: x.outlet, timestamp: ms},
   ]})
-  return x
 }
 const live = () => {
   const death = encodePayload({timestamp: Date.now(), metrics: [{name: 'bdSeq', type: 'Int64', value: session, timestamp: Date.now()}]})
@@ -67,7 +70,7 @@ const live = () => {
 }
 setInterval(() => {
   const ms = Date.now(), x = read(ms)
-  for (const [name, value] of Object.entries(x)) plain.publish('plant/' + name, JSON.stringify({v: value, ts: ms}), {qos: 1})
+  beside(ms, x)
   if (!node?.born) return
   send('NDATA', '', {timestamp: ms, metrics: [{alias: 1, type: 'Float', value: x.flow, timestamp: ms}]})
   send('DDATA', '/loop', {timestamp: ms, metrics: [
