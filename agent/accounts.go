@@ -10,10 +10,6 @@ import (
 	"heatreeve/agent/loads"
 )
 
-// wholeMinute is how much of a minute must be measured and flowing for it to
-// count in a verdict.
-const wholeMinute = 54 * time.Second
-
 // accounts are the engine and the judges of one plant, moved forward together a
 // beat at a time by one goroutine.
 type accounts struct {
@@ -24,7 +20,8 @@ type accounts struct {
 	fileBefore [32]byte   // of the restored state; zero where it is not known
 	kept       []bool     // loads that the restored state had accounts of
 	engine     *loads.Engine
-	judges     []*design.Judge
+	verdicts   *design.Plant
+	place      *time.Location // whose clock tells the hour of the week
 	closed     []loads.Minute
 
 	site, zone string            // name of the plant, and time zone of its reports
@@ -32,18 +29,15 @@ type accounts struct {
 }
 
 // newAccounts returns empty accounts of the plant that the site file with the digest
-// site describes.
-func newAccounts(cfg loads.Config, targets []design.Target, site [32]byte) (*accounts, error) {
+// site describes, at a place.
+func newAccounts(cfg loads.Config, designs design.Config, site [32]byte, place *time.Location) (*accounts, error) {
 	engine, err := loads.New(cfg)
 	if err != nil {
 		return nil, err
 	}
-	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), file: site, engine: engine}
+	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), file: site, engine: engine, verdicts: design.NewPlant(designs), place: place}
 	for i := range cfg.Loads {
 		a.byLoad = append(a.byLoad, rulesOfLoad(&cfg, i))
-	}
-	for _, t := range targets {
-		a.judges = append(a.judges, design.NewJudge(t))
 	}
 	return a, nil
 }
@@ -60,35 +54,40 @@ func (a *accounts) advance(b loads.Beat) []loads.Minute {
 		a.engine.Adopt(loads.Beat{Through: b.Through - int64(firstReach)})
 	}
 	a.closed = a.engine.Advance(b, a.closed[:0])
-	for _, m := range a.closed {
-		lasting, random := m.Doubt()
-		a.judges[m.Load].Observe(design.Minute{
-			Start:       m.Start,
-			Whole:       m.Measured-m.Idle >= int64(wholeMinute),
-			Duty:        m.Duty,
-			Uncertainty: lasting,
-			Random:      random,
-		})
+	for i := range a.closed {
+		m := &a.closed[i]
+		a.verdicts.Observe(m.Load, minuteOf(m), a.hour(m.Start))
 	}
 	return a.closed
 }
 
-// savedAccounts is the state of engine and judges; judges by the name of their
-// load.
+// hour is that of the week in which an instant lies, 0 from Monday midnight.
+func (a *accounts) hour(at int64) int {
+	t := time.Unix(0, at).In(a.place)
+	return (int(t.Weekday())+6)%7*24 + t.Hour()
+}
+
+// savedAccounts is the state of engine and verdicts.
 type savedAccounts struct {
 	Rules  [32]byte            // that the accounts were kept by; see rulesOf
 	File   [32]byte            // digest of the site file
 	Loads  map[string][32]byte // those of each load; see rulesOfLoad
 	Engine []byte
-	Judges map[string]savedJudge
+	Design design.Saved
+	// Judges is what there was of verdicts before; its names are all that is read.
+	Judges map[string]olderJudge
 
 	Site, Zone string            // name of the plant, and time zone of its reports
 	Units      map[string]string // SI unit of the readings of each tag, also of former ones
 }
 
-type savedJudge struct {
-	Last    design.Verdict
-	Minutes []design.Minute
+type olderJudge struct{ Last design.Verdict }
+
+// knows tells whether there are accounts of a load.
+func (s *savedAccounts) knows(load string) bool {
+	_, ok := s.Loads[load]
+	_, older := s.Judges[load]
+	return ok || older
 }
 
 // save returns the state that restore goes on from.
@@ -97,9 +96,8 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Rules: a.rules, File: a.file, Engine: engine, Judges: make(map[string]savedJudge, len(a.judges)), Loads: make(map[string][32]byte, len(a.judges))}
-	for i, j := range a.judges {
-		s.Judges[a.cfg.Loads[i].Name] = savedJudge{j.Last, j.Minutes}
+	s := savedAccounts{Rules: a.rules, File: a.file, Engine: engine, Design: a.verdicts.Save(), Loads: make(map[string][32]byte, len(a.cfg.Loads))}
+	for i := range a.cfg.Loads {
 		s.Loads[a.cfg.Loads[i].Name] = a.byLoad[i]
 	}
 	s.Site, s.Zone, s.Units = a.site, a.zone, a.units
@@ -117,13 +115,11 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
 		return false, fmt.Errorf("restore state of %d bytes: %w", len(state), err)
 	}
-	a.kept = make([]bool, len(a.judges))
-	for i, j := range a.judges {
-		if was, ok := s.Judges[a.cfg.Loads[i].Name]; ok {
-			a.kept[i] = true
-			j.Restore(was.Last, was.Minutes)
-		}
+	a.kept = make([]bool, len(a.cfg.Loads))
+	for i := range a.cfg.Loads {
+		a.kept[i] = s.knows(a.cfg.Loads[i].Name)
 	}
+	a.verdicts.Restore(s.Design)
 	a.fileBefore = s.File
 	a.keepUnits(s.Units)
 	if err := a.engine.Restore(s.Engine); err != nil {

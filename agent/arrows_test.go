@@ -38,7 +38,7 @@ var arrows = map[string][]string{
 	"agent/proving": {
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
-	"agent/working": {"agent/loads", "agent/design", "agent/site", "ingest/quality", "thermo", "thermo/unit"},
+	"agent/working": {"agent/loads", "agent/design", "agent/design/...", "agent/site", "ingest/quality", "thermo", "thermo/unit"},
 	"agent/survey": {
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
@@ -49,7 +49,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/loads", "agent/design", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }

@@ -14,6 +14,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/design"
 	"heatreeve/store"
 )
 
@@ -23,7 +24,7 @@ func TestInquireOfAFile(t *testing.T) {
 	db := keep(t, filepath.Join(dir, HistoryFile), store.Options{}, 1440, ramp, "ramp")
 	save := func(zone string) {
 		var b bytes.Buffer
-		if err := gob.NewEncoder(&b).Encode(savedAccounts{Site: "Mill", Zone: zone, Judges: map[string]savedJudge{"ramp": {}}}); err != nil {
+		if err := gob.NewEncoder(&b).Encode(savedAccounts{Site: "Mill", Zone: zone, Judges: map[string]olderJudge{"ramp": {design.Holding}}}); err != nil {
 			t.Fatal(err)
 		}
 		if err := db.Commit(store.Batch{Beats: []store.Beat{{Through: week.UnixNano() + 1440*minute}}, Checkpoint: b.Bytes()}); err != nil {

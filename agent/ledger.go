@@ -57,7 +57,7 @@ type ledger struct {
 // openLedger takes up the accounts where the history left them; now is by the system's
 // clock. Of o it wants the log, the version and the clock; without that, now stands still.
 func openLedger(s *site.Site, db *store.Store, o Options, now time.Time) (*ledger, error) {
-	a, err := newAccounts(plantOf(s), targetsOf(s), s.Digest)
+	a, err := newAccounts(plantOf(s), designOf(s), s.Digest, s.Zone)
 	if err != nil {
 		return nil, err
 	}

@@ -87,7 +87,7 @@ func TestLedgerAfterACut(t *testing.T) {
 	s := parsed(t, benchSite)
 	whole, shut := open(t, s, filepath.Join(t.TempDir(), "h.db"), store.Options{})
 	feed(whole, 0, 600)
-	want, verdict := whole.registers(), whole.accounts.judges[0].Last
+	want, verdict := whole.registers(), whole.accounts.verdicts.Verdict(0, false, false)
 	shut()
 	if verdict != design.Holding || want[0].Given == 0 {
 		t.Fatalf("verdict %v, given %g J: the course does not show anything", verdict, want[0].Given)
@@ -111,7 +111,7 @@ func TestLedgerAfterACut(t *testing.T) {
 	if got := l.registers(); got[0] != want[0] {
 		t.Errorf("registers %+v, want %+v", got[0], want[0])
 	}
-	if got := l.accounts.judges[0].Last; got != verdict {
+	if got := l.accounts.verdicts.Verdict(0, false, false); got != verdict {
 		t.Errorf("verdict %v, want %v", got, verdict)
 	}
 }

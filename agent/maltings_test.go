@@ -35,7 +35,7 @@ func newMaltings(t *testing.T) *maltings {
 	if err != nil {
 		t.Fatal(err)
 	}
-	books, err := newAccounts(plantOf(s), targetsOf(s), s.Digest)
+	books, err := newAccounts(plantOf(s), designOf(s), s.Digest, s.Zone)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -3,7 +3,6 @@ package agent
 import (
 	"fmt"
 
-	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/ingest"
@@ -102,15 +101,6 @@ func streamOf(s *site.Stream) loads.Stream {
 
 var flowKinds = map[unit.Dimension]loads.FlowKind{
 	unit.MassFlow: loads.MassFlow, unit.VolumeFlow: loads.VolumeFlow, unit.MolarFlow: loads.MolarFlow,
-}
-
-// targetsOf are the designs of the loads, in their order.
-func targetsOf(s *site.Site) []design.Target {
-	var targets []design.Target
-	for _, l := range s.Loads {
-		targets = append(targets, design.Target{Duty: l.Design.Duty, Allow: l.Design.Allow, Lasting: l.Design.Lasting})
-	}
-	return targets
 }
 
 // signalsOf are the tags as the session reads them.

@@ -93,12 +93,12 @@ func (a *Agent) fileBytes() int64 {
 }
 
 func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
-	d := a.site.Loads[i].Design
+	g := l.accounts.verdicts.Grounds(i)
 	return view.Load{
 		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
-		Design: d.Duty, Allow: d.Allow,
+		Design: g.Today.Duty, Allow: g.Target.Allow, Grounds: g,
 		Witness: l.attested.at(i, l.accounts.engine.Through()),
-		Verdict: l.accounts.judges[i].Verdict(!s.Figure.Measured(), s.Figure.Idle),
+		Verdict: l.accounts.verdicts.Verdict(i, !s.Figure.Measured(), s.Figure.Idle),
 	}
 }
 

@@ -7,12 +7,14 @@ import (
 	"errors"
 	"fmt"
 	"io/fs"
+	"maps"
 	"net/http"
 	"net/http/httptrace"
 	"net/textproto"
 	"net/url"
 	"os"
 	"path/filepath"
+	"slices"
 	"time"
 
 	"heatreeve/store"
@@ -136,8 +138,9 @@ func historyOf(db *store.Store) (h history, err error) {
 		return h, fmt.Errorf("state of %d bytes: %w", len(state), err)
 	}
 	h.site, h.units = s.Site, s.Units
-	for name := range s.Judges {
-		h.current = append(h.current, name)
+	h.current = slices.AppendSeq(h.current, maps.Keys(s.Loads))
+	if len(s.Loads) == 0 { // as older ones have it
+		h.current = slices.AppendSeq(h.current, maps.Keys(s.Judges))
 	}
 	if s.Zone != "" { // older histories have none
 		h.zone, err = time.LoadLocation(s.Zone)

@@ -181,8 +181,7 @@ func (r *replay) of(ids map[string]uint32, tag int, from, g int64) (found []load
 
 // run puts all through, and returns what the figure at the grid point g was worked from.
 func (r *replay) run(ctx context.Context, g int64) (x working.Subject, err error) {
-	d := r.site.Loads[r.load].Design
-	a, err := newAccounts(r.cfg, []design.Target{{Duty: d.Duty, Allow: d.Allow, Lasting: d.Lasting}}, r.site.Digest)
+	a, err := newAccounts(r.cfg, design.Config{Loads: designOf(r.site).Loads[r.load : r.load+1]}, r.site.Digest, r.site.Zone)
 	if err != nil {
 		return x, err
 	}
@@ -199,7 +198,7 @@ func (r *replay) run(ctx context.Context, g int64) (x working.Subject, err error
 	}
 	a.advance(loads.Beat{Through: g})
 	a.advance(loads.Beat{Through: g + r.cfg.Grid})
-	x = working.Subject{Site: r.site, Load: r.load, Basis: a.engine.Basis(0), Grounds: a.judges[0].Grounds()}
+	x = working.Subject{Site: r.site, Load: r.load, Basis: a.engine.Basis(0), Grounds: a.verdicts.Grounds(0)}
 	r.back(&x.Basis)
 	x.Notes = r.notes()
 	return x, nil

@@ -67,7 +67,7 @@ func playOn(t *testing.T, text string) *played {
 	if err != nil {
 		t.Fatal(err)
 	}
-	books, err := newAccounts(plantOf(s), targetsOf(s), s.Digest)
+	books, err := newAccounts(plantOf(s), designOf(s), s.Digest, s.Zone)
 	if err != nil {
 		t.Fatal(err)
 	}

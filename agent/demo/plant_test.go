@@ -9,6 +9,7 @@ import (
 	"time"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/design/expect"
 	"heatreeve/agent/site"
 	"heatreeve/configs"
 	"heatreeve/thermo"
@@ -288,12 +289,13 @@ func TestFoulingTurnsTheVerdict(t *testing.T) {
 	s := creamery(t)
 	p := newPlant(t, s, 7)
 	l := &s.Loads[0]
-	judge := design.NewJudge(design.Target{Duty: l.Design.Duty, Allow: l.Design.Allow, Lasting: l.Design.Lasting})
+	expected := expect.Fixed{Duty: l.Design.Duty}
+	judge := design.NewJudge(design.Target{Expect: expected, Allow: l.Design.Allow, Lasting: l.Design.Lasting})
 	verdicts := map[time.Duration]design.Verdict{}
 	var short time.Duration
 	for at := time.Duration(0); at < 26*time.Hour; at += time.Minute {
 		duty := dutyAt(t, p, l.Name, at)
-		judge.Observe(design.Minute{Start: int64(at), Whole: true, Duty: duty, Uncertainty: 0.012 * duty})
+		judge.Observe(&design.Minute{Start: int64(at), Whole: true, Duty: duty, Uncertainty: 0.012 * duty}, expected.At(expect.Conditions{}))
 		verdicts[at] = judge.Verdict(false, false)
 		if short == 0 && at > rampEnds && verdicts[at] == design.Short {
 			short = at

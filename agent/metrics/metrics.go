@@ -41,7 +41,10 @@ var (
 	counted     = desc("load_witness_counted_joules", "Heat that the load's witness has counted since midnight by the clock of the site, in spans between two of its counts that were measured throughout.", "load")
 	served      = desc("load_witness_served_joules", "Heat that the load has served in the same spans as its witness has counted since midnight, positive in the load's own service.", "load")
 	deviation   = desc("load_witness_deviation_ratio", "How far the load is above its witness since midnight, as a fraction of what that has counted; absent until it has counted anything.", "load")
-	expected    = desc("load_expected_duty_watts", "Duty that the design expects now.", "load")
+	expected    = desc("load_expected_duty_watts", "Duty that the design expects at the conditions of the last minute.", "load")
+	expectedU   = desc("load_expected_duty_uncertainty_watts", "Standard uncertainty of what is expected, by what lasts.", "load")
+	off         = desc("load_deviation_watts", "Mean duty less what was expected of it, over the last minutes that a deviation must last.", "load")
+	offU        = desc("load_deviation_uncertainty_watts", "Standard uncertainty of that deviation.", "load")
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
 
 	reading  = desc("tag_reading_timestamp_seconds", "Unix time of the newest accepted reading.", "tag")
@@ -181,6 +184,11 @@ func (o *sink) load(l *view.Load, now design.Verdict) {
 	o.counter(doubtful, float64(l.Booked.Uncertain)/1e9, l.Name)
 	if l.Design != 0 {
 		o.gauge(expected, l.Design, l.Name)
+		o.gauge(expectedU, l.Grounds.Today.Lasting, l.Name)
+	}
+	if l.Grounds.Compared() {
+		o.gauge(off, l.Grounds.Deviation, l.Name)
+		o.gauge(offU, l.Grounds.Uncertainty(), l.Name)
 	}
 	for _, v := range design.Verdicts {
 		o.gauge(verdict, truth(v == now), l.Name, v.String())

@@ -80,7 +80,7 @@ heatreeve_load_witness_deviation_ratio{load="hot-water"} -0.25
 # TYPE heatreeve_load_witness_served_joules gauge
 heatreeve_load_witness_served_joules{load="dryer"} 0
 heatreeve_load_witness_served_joules{load="hot-water"} 1.5e+09
-# HELP heatreeve_load_expected_duty_watts Duty that the design expects now.
+# HELP heatreeve_load_expected_duty_watts Duty that the design expects at the conditions of the last minute.
 # TYPE heatreeve_load_expected_duty_watts gauge
 heatreeve_load_expected_duty_watts{load="hot-water"} 640000
 # HELP heatreeve_tag_reading_timestamp_seconds Unix time of the newest accepted reading.

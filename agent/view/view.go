@@ -36,9 +36,11 @@ type Load struct {
 	Until   int64 // when the first input runs out of age; MaxInt64 for constants alone
 	Means   [len(loads.Windows)]loads.Mean
 	Booked  loads.Totals // as last committed to disk
-	Design  float64      // expected duty, W; 0 where the load has none
+	Design  float64      // duty expected in the last minute, W; 0 where it is not known, or the load has no design
 	Allow   float64      // allowance, fraction of Design
 	Verdict design.Verdict
+	// Grounds are what the verdict rests on.
+	Grounds design.Grounds
 	Witness *Witness // nil of a load without one
 }
 

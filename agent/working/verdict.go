@@ -24,8 +24,8 @@ func (p *page) verdict() {
 		p.say("the site file gives no design duty")
 		return
 	}
-	design0 := p.given("Qd", "design duty", g.Target.Duty/1e3, "kW", place(g.Target.Duty/1e3, 10), "site file")
-	p.worked("a", "allowance", named("allow", g.Target.Allow).times(design0), g.Target.Allow*g.Target.Duty/1e3, "kW", place(g.Target.Allow*g.Target.Duty/1e3, fine), "")
+	design0 := p.given("Qd", "design duty", g.Today.Duty/1e3, "kW", place(g.Today.Duty/1e3, 10), "site file")
+	p.worked("a", "allowance", named("allow", g.Target.Allow).times(design0), g.Target.Allow*g.Today.Duty/1e3, "kW", place(g.Target.Allow*g.Today.Duty/1e3, fine), "")
 	if g.Ground != design.TooFew && g.Ground != design.NotWhole {
 		p.deviation(design0)
 	}
@@ -35,14 +35,14 @@ func (p *page) verdict() {
 // deviation writes how far the last minutes are from design.
 func (p *page) deviation(design0 term) {
 	g := &p.Grounds
-	n := place(g.Mean/1e3, fine)
-	mean := p.given("Qn", fmt.Sprintf("mean duty of the last %d minutes", g.Lasting), g.Mean/1e3, "kW", n, "minutes before")
-	p.given("Qmin", "the least of their means", g.Least/1e3, "kW", n, "")
-	p.given("Qmax", "the greatest", g.Most/1e3, "kW", n, "")
-	d := p.worked("d", "deviation", mean.minus(design0), (g.Mean-g.Target.Duty)/1e3, "kW", n, "")
-	u := p.given("un", "standard uncertainty of that mean", g.Uncertainty/1e3, "kW", place(g.Uncertainty/1e3, coarse+1), byLaw)
-	if g.Uncertainty > 0 {
-		x := (g.Mean - g.Target.Duty) / g.Uncertainty
+	n := place(g.Duty/1e3, fine)
+	mean := p.given("Qn", fmt.Sprintf("mean duty of the last %d minutes", g.Lasting), g.Duty/1e3, "kW", n, "minutes before")
+	p.given("Qmin", "the least of their means", (g.Expected+g.Least)/1e3, "kW", n, "")
+	p.given("Qmax", "the greatest", (g.Expected+g.Most)/1e3, "kW", n, "")
+	d := p.worked("d", "deviation", mean.minus(design0), g.Deviation/1e3, "kW", n, "")
+	u := p.given("un", "standard uncertainty of that mean", g.Uncertainty()/1e3, "kW", place(g.Uncertainty()/1e3, coarse+1), byLaw)
+	if g.Uncertainty() > 0 {
+		x := g.Deviation / g.Uncertainty()
 		p.worked("d/u", "deviation in standard uncertainties", d.over(u), x, "1", place(x, 3), "")
 	}
 }
@@ -50,9 +50,9 @@ func (p *page) deviation(design0 term) {
 // because says what decides.
 func (p *page) because() string {
 	g := &p.Grounds
-	U := fixed(CoverageFactor*g.Uncertainty/1e3, place(CoverageFactor*g.Uncertainty/1e3, 3))
+	U := fixed(CoverageFactor*g.Uncertainty()/1e3, place(CoverageFactor*g.Uncertainty()/1e3, 3))
 	side := "below"
-	if g.Mean > g.Target.Duty {
+	if g.Deviation > 0 {
 		side = "above"
 	}
 	switch g.Ground {
@@ -69,7 +69,7 @@ func (p *page) because() string {
 	case design.Within:
 		return fmt.Sprintf("holding: each of the %d minutes lies within the allowance", g.Lasting)
 	}
-	if math.Abs(g.Mean-g.Target.Duty) <= CoverageFactor*g.Uncertainty {
+	if math.Abs(g.Deviation) <= CoverageFactor*g.Uncertainty() {
 		return fmt.Sprintf("%v: the deviation does not stand out of the expanded uncertainty of %s kW, so the verdict before stands", g.Verdict, U)
 	}
 	return fmt.Sprintf("%v: some minutes lie within the allowance and some beyond, so the verdict before stands; it waits until all agree", g.Verdict)

@@ -3,15 +3,20 @@ package design
 import (
 	"testing"
 	"time"
+
+	"heatreeve/agent/design/expect"
 )
 
-var target = Target{Duty: 640e3, Allow: 0.08, Lasting: 5 * time.Minute}
+var target = Target{Name: "hot-water", Expect: expect.Fixed{Duty: 640e3}, Allow: 0.08, Lasting: 5 * time.Minute}
+
+// observe judges a minute by the load's own design.
+func observe(j *Judge, m Minute) { j.Observe(&m, j.expected(&m, 0)) }
 
 // course feeds minute means in kW with the given standard uncertainty in kW; a
 // negative mean stands for a minute that is not whole.
 func course(j *Judge, from int64, u float64, kW ...float64) int64 {
 	for _, q := range kW {
-		j.Observe(Minute{Start: from, Whole: q >= 0, Duty: q * 1e3, Uncertainty: u * 1e3})
+		observe(j, Minute{Start: from, Whole: q >= 0, Duty: q * 1e3, Uncertainty: u * 1e3})
 		from += nanosecondsPerMinute
 	}
 	return from
@@ -103,7 +108,7 @@ func TestRestoreGoesOn(t *testing.T) {
 	j := NewJudge(target)
 	at := course(j, 0, 8, 560, 560, 560, 560)
 	k := NewJudge(target)
-	k.Restore(j.Last, j.Minutes)
+	k.restore(*j)
 	course(k, at, 8, 560)
 	if k.Last != Short {
 		t.Errorf("verdict %v after a restart in between, want short", k.Last)
@@ -119,7 +124,7 @@ func TestRandomUncertaintyAveragesOut(t *testing.T) {
 	}{{0, 45e3, Short}, {45e3, 0, Undecided}, {35e3, 45e3, Undecided}} {
 		j := NewJudge(target)
 		for k := range int64(5) {
-			j.Observe(Minute{Start: k * nanosecondsPerMinute, Whole: true, Duty: 560e3, Uncertainty: tt.lasting, Random: tt.random * tt.random})
+			observe(j, Minute{Start: k * nanosecondsPerMinute, Whole: true, Duty: 560e3, Uncertainty: tt.lasting, Random: tt.random * tt.random})
 		}
 		if j.Last != tt.want {
 			t.Errorf("%g W lasting and %g W random a minute: verdict %v, want %v", tt.lasting, tt.random, j.Last, tt.want)

@@ -1,0 +1,118 @@
+package design
+
+import (
+	"fmt"
+	"hash/fnv"
+	"time"
+
+	"heatreeve/agent/design/expect"
+)
+
+// Target is the design of one load.
+type Target struct {
+	Name    string
+	Allow   float64       // allowance, as a fraction of the expected duty; 0 where the load has no design
+	Lasting time.Duration // how long a deviation must last; whole minutes
+	// FalseWarnings is how many warnings a year of a load without fault are put up with; 0 is 1.
+	FalseWarnings float64
+	// Expect tells what is expected. It is nil where the load has no design, and where what
+	// is expected is the exchanger's to tell, which ByExchanger says.
+	Expect      expect.Expectation
+	ByExchanger bool
+}
+
+// designed tells whether anything is expected of the load.
+func (t *Target) designed() bool { return t.Expect != nil || t.ByExchanger }
+
+// minutes is how many a deviation must last.
+func (t *Target) minutes() int { return max(1, int(t.Lasting/time.Minute)) }
+
+// Judge follows one load. Its exported fields are its state, for saving.
+type Judge struct {
+	Of      uint64  // of the target; see fingerprint
+	Last    Verdict // Undecided, Holding, Short or Over
+	Window  []Seen  // the last minutes in a row, at most as many as a deviation must last
+	Gate    Gate
+	Drift   Monitor
+	Block   int   // minutes of Window that are of the present block of the monitor
+	Rests   int64 // since when the load has rested; 0 where it has not
+	Roll          // the warnings that stand
+	target  Target
+	lasting int
+	grounds Grounds
+}
+
+// NewJudge returns a judge of a load with the given target. A lasting of less
+// than a minute counts as one.
+func NewJudge(t Target) *Judge {
+	j := &Judge{Of: fingerprint(t), target: t, lasting: t.minutes()}
+	j.Drift = NewMonitor(j.lasting, t.FalseWarnings)
+	j.decide()
+	return j
+}
+
+// Observe takes in the next minute with what is expected of it. A minute that does not
+// follow on the last one means that those between were missing.
+func (j *Judge) Observe(m *Minute, e expect.Expected) {
+	if n := len(j.Window); n > 0 && m.Start != j.Window[n-1].Start+nanosecondsPerMinute {
+		j.lapse()
+	}
+	j.sense(m)
+	j.rest(m)
+	j.Window = append(j.Window, compare(m, e))
+	if n := len(j.Window); n > j.lasting {
+		j.Window = append(j.Window[:0], j.Window[n-j.lasting:]...)
+	}
+	j.decide()
+	j.Last = j.grounds.Verdict
+	j.follow(&j.grounds)
+	j.warn(&j.grounds)
+}
+
+// lapse begins afresh after minutes that were missing.
+func (j *Judge) lapse() {
+	j.Window = j.Window[:0]
+	j.Last, j.Block = Undecided, 0
+	j.Gate = Gate{}
+}
+
+// Verdict returns the present verdict, given whether the load is blind or idle
+// at this instant.
+func (j *Judge) Verdict(blind, idle bool) Verdict {
+	switch {
+	case blind:
+		return Blind
+	case idle:
+		return Idle
+	}
+	return j.Last
+}
+
+// rest notes since when the load has rested.
+func (j *Judge) rest(m *Minute) {
+	switch {
+	case !m.Idle:
+		j.Rests = 0
+	case j.Rests == 0:
+		j.Rests = m.Start
+	}
+}
+
+// fingerprint tells one design from another: two that expect the same by the same figures
+// have the same.
+func fingerprint(of any) uint64 {
+	h := fnv.New64a()
+	fmt.Fprintf(h, "%+v", of)
+	return h.Sum64()
+}
+
+// restore takes up a saved state.
+func (j *Judge) restore(was Judge) {
+	if was.Of != j.Of {
+		j.Roll = was.Roll
+		return
+	}
+	was.target, was.lasting, was.Drift.limit = j.target, j.lasting, j.Drift.limit
+	*j = was
+	j.decide()
+}

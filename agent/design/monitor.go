@@ -1,0 +1,94 @@
+package design
+
+import "math"
+
+const (
+	// slack is k of the CUSUM in standard deviations of a window: half of the shift that is
+	// found soonest. Common practice, with the tables of the NIST/SEMATECH e-Handbook, 6.3.2.3.
+	slack = 0.5
+	// leastWindows is how many windows must have shown how they scatter before one counts.
+	// Common practice, no source.
+	leastWindows = 20
+	minutesAYear = 365.25 * 24 * 60
+)
+
+// Monitor follows a deviation through windows in a row that do not overlap, by a tabular
+// CUSUM of
+//
+//	x = sign(d)·max(0, |d| − 2·u)/s,
+//
+// d the mean deviation of a window, u what of its standard uncertainty lasts, s its standard
+// deviation by what does not: as the windows scatter, and not less than their readings say. A
+// constant error within what is stated of the instruments so never adds up. The limit h is
+// that which, with windows of scatter alone, gives the chosen number of false warnings in a
+// year of windows.
+type Monitor struct {
+	CUSUM Sums
+	Scale Scale
+	Side  int   // of the deviation that is signalled, −1 or 1; 0 for none
+	Since int64 // when that began
+	Size  float64
+	Last  Drift
+	limit float64
+}
+
+// Drift is what a monitor tells of its last window.
+type Drift struct {
+	Windows   int     // that have shown how they scatter
+	Waits     int     // for so many more before one counts
+	Deviation float64 // of the last window, a fraction
+	Dead      float64 // dead band 2·u
+	Scatter   float64 // s
+	X         float64 // what the CUSUM took
+	High, Low float64 // its sums
+	Limit     float64 // h
+	Side      int     // as of the monitor
+	Since     int64
+	Size      float64 // estimated deviation since then, a fraction
+}
+
+// NewMonitor returns a monitor of windows of the given minutes that gives so many false
+// warnings a year; 0 is 1.
+func NewMonitor(minutes int, falseWarnings float64) Monitor {
+	if falseWarnings <= 0 {
+		falseWarnings = 1
+	}
+	return Monitor{limit: threshold(slack, minutesAYear/float64(minutes)/falseWarnings)}
+}
+
+// Observe takes in the mean deviation of a window that began at from, as a fraction, with
+// what of its standard uncertainty lasts and what is random.
+func (m *Monitor) Observe(from int64, d, lasting, random float64) {
+	m.Scale.observe(d)
+	x := Drift{Windows: m.Scale.N, Deviation: d, Dead: 2 * lasting, Limit: m.limit}
+	x.Scatter = max(random, m.Scale.sigma())
+	x.Waits = max(0, leastWindows-m.Scale.N)
+	if x.Waits == 0 && x.Scatter > 0 {
+		x.X = math.Copysign(max(0, math.Abs(d)-x.Dead), d) / x.Scatter
+		m.add(from, &x)
+	}
+	x.High, x.Low = m.CUSUM.High, m.CUSUM.Low
+	x.Side, x.Since, x.Size = m.Side, m.Since, m.Size
+	m.Last = x
+}
+
+// add puts x into the sums. A side that has signalled stands until its sum has come back to
+// zero; it does not rise beyond the limit meanwhile, so that the way back is as long as a
+// signal took.
+func (m *Monitor) add(from int64, x *Drift) {
+	c := &m.CUSUM
+	c.observe(from, x.X, slack)
+	if m.Side > 0 && c.High == 0 || m.Side < 0 && c.Low == 0 {
+		m.Side, m.Since, m.Size = 0, 0, 0
+	}
+	switch {
+	case c.High >= m.limit && m.Side <= 0:
+		m.Side, m.Since, m.Size = 1, c.HighSince, (slack+c.High/float64(c.HighN))*x.Scatter+x.Dead
+	case c.Low >= m.limit && m.Side >= 0:
+		m.Side, m.Since, m.Size = -1, c.LowSince, -(slack+c.Low/float64(c.LowN))*x.Scatter-x.Dead
+	}
+	c.High, c.Low = min(c.High, m.limit), min(c.Low, m.limit)
+}
+
+// Drift tells of the last window.
+func (m *Monitor) Drift() Drift { return m.Last }

@@ -1,0 +1,64 @@
+package agent
+
+import (
+	"math"
+	"time"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/design/expect"
+	"heatreeve/agent/loads"
+	"heatreeve/agent/site"
+)
+
+// designOf is what the loads and exchangers of a site should do, in their order.
+func designOf(s *site.Site) design.Config {
+	var cfg design.Config
+	for i := range s.Loads {
+		cfg.Loads = append(cfg.Loads, targetOf(&s.Loads[i]))
+	}
+	return cfg
+}
+
+func targetOf(l *site.HeatLoad) design.Target {
+	t := design.Target{Name: l.Name, Allow: l.Design.Allow, Lasting: l.Design.Lasting}
+	if l.Design.Duty != 0 {
+		t.Expect = expect.Fixed{Duty: l.Design.Duty}
+	}
+	return t
+}
+
+// wholeMinute is how much of a minute must be measured and flowing for it to
+// count in a verdict.
+const wholeMinute = 54 * time.Second
+
+// minuteOf is a minute of a load as its verdict sees it.
+func minuteOf(m *loads.Minute) design.Minute {
+	lasting, random := m.Doubt()
+	x := design.Minute{
+		Start:       m.Start,
+		Whole:       m.Measured-m.Idle >= int64(wholeMinute),
+		Idle:        m.Idle >= int64(wholeMinute),
+		Duty:        m.Duty,
+		Uncertainty: lasting,
+		Random:      random,
+		Flow:        m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet,
+	}
+	if x.Whole {
+		lastingErrors(&x, m)
+	}
+	return x
+}
+
+// lastingErrors tells from the shares of a minute's uncertainty what of its means lasts: a share is
+// what the input's error does to the duty, which of the flow goes with Q/m and of a
+// temperature with Q/(T1 − T2).
+func lastingErrors(x *design.Minute, m *loads.Minute) {
+	share := func(p loads.Part) float64 { return math.Abs(m.Systematic[p]) / (float64(m.Measured) / 1e9) }
+	duty, apart := math.Abs(m.Duty), math.Abs(m.Inlet-m.Outlet)
+	if !(duty > 0) || !(apart > 0) {
+		return
+	}
+	x.FlowError = share(loads.PartFlow) / duty * m.MassFlow
+	x.InletError, x.OutletError = share(loads.PartInlet)/duty*apart, share(loads.PartOutlet)/duty*apart
+	x.CpError = share(loads.PartCp) / duty
+}
