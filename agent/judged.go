@@ -14,17 +14,54 @@ import (
 func designOf(s *site.Site) design.Config {
 	var cfg design.Config
 	for i := range s.Loads {
-		cfg.Loads = append(cfg.Loads, targetOf(&s.Loads[i]))
+		cfg.Loads = append(cfg.Loads, targetOf(s, &s.Loads[i]))
 	}
 	return cfg
 }
 
-func targetOf(l *site.HeatLoad) design.Target {
+func targetOf(s *site.Site, l *site.HeatLoad) design.Target {
 	t := design.Target{Name: l.Name, Allow: l.Design.Allow, Lasting: l.Design.Lasting}
 	if l.Design.Duty != 0 {
 		t.Expect = expect.Fixed{Duty: l.Design.Duty}
 	}
+	if st := l.Stream; st != nil {
+		t.Tags = design.Tags{Flow: tagName(s, st.Flow), Inlet: tagName(s, st.Inlet), Outlet: tagName(s, st.Outlet)}
+		t.Point = pointOf(l)
+	}
+	if l.HasWitness && l.Witness.Tag >= 0 {
+		tag := &s.Tags[l.Witness.Tag]
+		t.WitnessError, t.WitnessStep = tag.Accuracy.Rel/math.Sqrt(3), tag.Resolution
+	}
 	return t
+}
+
+func tagName(s *site.Site, from site.Source) string {
+	if from.Constant() {
+		return ""
+	}
+	return s.Tags[from.Tag].Name
+}
+
+// pointOf is where a stream should run. Its flow is that which moves the design duty between
+// the design temperatures; it is not told where the fluid's enthalpies there are not.
+func pointOf(l *site.HeatLoad) design.Point {
+	d, p := &l.Design, l.Design.Pressure
+	if p == 0 {
+		p = l.Stream.Pressure.Value
+	}
+	x := design.Point{Inlet: d.Inlet, Outlet: d.Outlet}
+	if d.Duty == 0 || d.Inlet == 0 || d.Outlet == 0 || p == 0 {
+		return x
+	}
+	in, err := l.Stream.Fluid.At(d.Inlet, p)
+	if err != nil {
+		return x
+	}
+	out, err := l.Stream.Fluid.At(d.Outlet, p)
+	if rise := math.Abs(in.Enthalpy - out.Enthalpy); err == nil && rise > 0 {
+		x.Flow = math.Abs(d.Duty) / rise
+	}
+	return x
 }
 
 // wholeMinute is how much of a minute must be measured and flowing for it to
@@ -42,6 +79,7 @@ func minuteOf(m *loads.Minute) design.Minute {
 		Uncertainty: lasting,
 		Random:      random,
 		Flow:        m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet,
+		Counted: m.Witness, Served: m.Compared, Latent: m.Latent > 0,
 	}
 	if x.Whole {
 		lastingErrors(&x, m)

@@ -19,7 +19,15 @@ type Target struct {
 	// is expected is the exchanger's to tell, which ByExchanger says.
 	Expect      expect.Expectation
 	ByExchanger bool
+	Point       Point // where the stream should run
+	Tags        Tags
+	// WitnessError is the standard uncertainty of what the witness counts, as a fraction, and
+	// WitnessStep the step of its counter, J; both 0 where the load has none.
+	WitnessError, WitnessStep float64
 }
+
+// Tags are those that a stream is worked from, by name; empty for a constant.
+type Tags struct{ Flow, Inlet, Outlet string }
 
 // designed tells whether anything is expected of the load.
 func (t *Target) designed() bool { return t.Expect != nil || t.ByExchanger }
@@ -36,7 +44,8 @@ type Judge struct {
 	Drift   Monitor
 	Block   int   // minutes of Window that are of the present block of the monitor
 	Rests   int64 // since when the load has rested; 0 where it has not
-	Roll          // the warnings that stand
+	Witness Attest
+	Roll    // the warnings that stand
 	target  Target
 	lasting int
 	grounds Grounds
@@ -57,6 +66,7 @@ func (j *Judge) Observe(m *Minute, e expect.Expected) {
 	if n := len(j.Window); n > 0 && m.Start != j.Window[n-1].Start+nanosecondsPerMinute {
 		j.lapse()
 	}
+	j.Witness.observe(m)
 	j.sense(m)
 	j.rest(m)
 	j.Window = append(j.Window, compare(m, e))

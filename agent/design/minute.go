@@ -24,7 +24,14 @@ type Minute struct {
 	// what lasts, in their units, and CpError that of the specific heat, as a fraction.
 	FlowError, InletError, OutletError, CpError float64
 	Drivers                                     []float64 // SI; NaN where a tag told nothing
+	// Counted is what the load's witness counted, J, in the spans between two of its readings
+	// that ended in this minute, and Served the heat that the load served in them.
+	Counted, Served float64
+	Latent          bool // for a part of it vapour condensed, or may have: the duty is the sensible part
 }
+
+// Point is where a stream runs: kg/s and K. What is 0 is not known.
+type Point struct{ Flow, Inlet, Outlet float64 }
 
 const nanosecondsPerMinute = int64(time.Minute)
 
@@ -46,6 +53,8 @@ type Seen struct {
 	Duty  float64 // W
 	expect.Expected
 	Lasting, Random float64 // of the measured duty: standard uncertainty, W, and variance, W²
+	At, Errors      Point   // where the stream ran, and the standard uncertainties of that by what lasts
+	Latent          bool
 }
 
 // compare sets a minute beside what is expected of it.
@@ -53,6 +62,8 @@ func compare(m *Minute, e expect.Expected) Seen {
 	return Seen{
 		Start: m.Start, Whole: m.Whole, Idle: m.Idle, Duty: m.Duty, Expected: e,
 		Lasting: m.Uncertainty, Random: m.Random,
+		At: Point{m.Flow, m.Inlet, m.Outlet}, Errors: Point{m.FlowError, m.InletError, m.OutletError},
+		Latent: m.Latent,
 	}
 }
 

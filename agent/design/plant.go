@@ -1,6 +1,7 @@
 package design
 
 import (
+	"heatreeve/agent/design/cause"
 	"heatreeve/agent/design/expect"
 )
 
@@ -47,6 +48,9 @@ func (p *Plant) Verdict(load int, blind, idle bool) Verdict {
 
 // Grounds are those of a load.
 func (p *Plant) Grounds(load int) Grounds { return p.judges[load].Grounds() }
+
+// Evidence is what is known of a load, for [cause.Rank].
+func (p *Plant) Evidence(load int) cause.Evidence { return p.judges[load].Evidence() }
 
 // Warnings returns those that stand, by load.
 func (p *Plant) Warnings() []Warning {

@@ -3,6 +3,8 @@ package design
 import (
 	"math"
 	"time"
+
+	"heatreeve/agent/design/cause"
 )
 
 // follow gives a window to the monitor each time that its minutes are new, whole, expected
@@ -60,7 +62,7 @@ func (j *Judge) warn(g *Grounds) {
 
 // warning is one by the grounds.
 func (j *Judge) warning(k Kind, since int64, g *Grounds) Warning {
-	w := Warning{Kind: k, Subject: j.target.Name, Since: since, Now: g.Part()}
+	w := Warning{Kind: k, Subject: j.target.Name, Since: since, Now: g.Part(), Causes: cause.Rank(j.Evidence())}
 	if k == WarnDrifting && !g.Compared() {
 		w.Now = j.Drift.Size
 	}

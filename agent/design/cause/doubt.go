@@ -78,11 +78,11 @@ func (e *Evidence) unsteady() (Cause, bool) {
 	if s.Worst != "" {
 		c.Says = fmt.Sprintf("the %s was not steady: nothing else can be told until it is", s.Worst)
 	}
-	if finite(s.R, s.Limit) && s.Limit > 0 {
-		c.Figures = append(c.Figures, Figure{"R-statistic of the " + s.Worst, s.R, "1", 0}, Figure{"its limit", s.Limit, "1", 0})
+	if finite(s.Change, s.Limit, s.Stands) && s.Limit > 0 {
+		c.Figures = append(c.Figures, Figure{"change of the duty by the " + s.Worst, s.Change, "W", s.Stands}, Figure{"let pass", s.Limit, "W", 0})
 	}
-	if s.Slope.sound() {
-		c.Figures = append(c.Figures, Figure{"slope of the " + s.Worst + ", a second", s.Slope.Value, "SI", s.Slope.zeta()})
+	if finite(s.R, s.RLimit) && s.RLimit > 0 {
+		c.Figures = append(c.Figures, Figure{"R-statistic of the " + s.Worst, s.R, "1", 0}, Figure{"its limit", s.RLimit, "1", 0})
 	}
 	return c, true
 }

@@ -51,13 +51,13 @@ func (o *Operating) away() Estimate {
 }
 
 // Steadiness is how steady the window was. Where it was not, Worst is the variable that
-// moved most, with its R-statistic, the R beyond which it is not steady, and its slope in
-// SI units a second.
+// moved the duty most.
 type Steadiness struct {
 	Known, Steady bool
 	Worst         string
-	R, Limit      float64
-	Slope         Estimate
+	Change, Limit float64 // by how much it moved the duty over the window, and how much is let pass, W
+	Stands        float64 // its slope in standard errors
+	R, RLimit     float64 // its R-statistic, and that beyond which it is not steady; 0 where not known
 }
 
 // Test is one of a single instrument, or of a pair: a redundant sensor, or a reading at
@@ -162,9 +162,10 @@ func (e *Evidence) inputs() []input {
 	return known
 }
 
+// finite tells that all are numbers, and none so great that its square is not.
 func finite(xs ...float64) bool {
 	for _, x := range xs {
-		if math.IsNaN(x) || math.IsInf(x, 0) {
+		if !(math.Abs(x) < 1e150) {
 			return false
 		}
 	}

@@ -29,18 +29,17 @@ func (e *Evidence) faults() []fault {
 // strangers are the instruments of tests that no input reads: the other one of a pair may
 // be the one that is wrong.
 func (e *Evidence) strangers(inputs []input) []fault {
-	read := make(map[string]Kind, len(inputs))
-	unit := make(map[string]string, len(inputs))
+	read := make(map[string]input, len(inputs))
 	for _, in := range inputs {
-		read[in.Tag], unit[in.Tag] = in.kind, in.unit
+		read[in.Tag] = in
 	}
 	var all []fault
-	for _, t := range e.Tests {
-		if _, known := read[t.Against]; !known && t.Against != "" && read[t.Tag] != "" && t.sound() {
-			read[t.Against] = read[t.Tag]
-			all = append(all, fault{
-				kind: read[t.Tag], tag: t.Against, words: "the other of the pair", unit: unit[t.Tag], stranger: true,
-			})
+	for _, t := range e.sortedTests() {
+		in, ok := read[t.Tag]
+		_, own := read[t.Against]
+		named := func(f fault) bool { return f.tag == t.Against }
+		if ok && !own && t.Against != "" && t.sound() && !slices.ContainsFunc(all, named) {
+			all = append(all, fault{kind: in.kind, tag: t.Against, words: "the other of the pair", unit: in.unit, stranger: true})
 		}
 	}
 	return all

@@ -158,7 +158,7 @@ func (s *isolation) signature(f fault) []float64 {
 func (s *isolation) fit(f fault) (found, bool) {
 	d := s.signature(f)
 	dd, dr := dot(d, d), dot(d, s.whitened)
-	if !(dd > 0) || !finite(dd, dr) || dr == 0 || f.falls && dr > 0 {
+	if !(dd > 0) || !finite(dd, dr, dr/dd, 1/math.Sqrt(dd)) || dr == 0 || f.falls && dr > 0 {
 		return found{}, false
 	}
 	gain := min(dr/dd*dr, s.total)

@@ -12,7 +12,7 @@ func (e *Evidence) away(iso *isolation, real float64) []Cause {
 	var causes []Cause
 	for _, in := range e.inputs() {
 		off := in.Operating.away()
-		if in.away == "" || in.Follows || !stands(off) {
+		if in.away == "" || in.Follows || !stands(off) || !finite(100*off.Value/in.Design) {
 			continue
 		}
 		c := Cause{Kind: in.away, Subject: in.Tag, Figures: []Figure{

@@ -41,7 +41,9 @@ func ordered(causes []Cause) []Cause {
 		place[k] = i
 	}
 	for i := range causes {
-		causes[i].Weight = min(1, math.Round(causes[i].Weight*1e6)/1e6) // so that rounding orders nothing
+		c := &causes[i]
+		c.Figures = slices.DeleteFunc(c.Figures, func(f Figure) bool { return !finite(f.Value, f.Stands) })
+		c.Weight = min(1, math.Round(c.Weight*1e6)/1e6) // so that rounding orders nothing
 	}
 	slices.SortStableFunc(causes, func(a, b Cause) int {
 		return cmp.Or(

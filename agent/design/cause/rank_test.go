@@ -45,7 +45,7 @@ func TestRank(t *testing.T) {
 		{"low difference", nil, circuit(3, 353.15, 339.65), LowDifference, "circuit", 0.95, nil, "flow is 50 % above design while the temperature difference is 32 % below"},
 		{"no flow", func(e *Evidence) { e.Deviation = Estimate{} }, circuit(0, 353.15, 333.15), FlowAway, "FT", 1, []Kind{FlowMeter}, "flow is 100 % below design"},
 		{"unsteady", func(e *Evidence) {
-			e.Steadiness = Steadiness{Known: true, Worst: "inlet", R: 5, Limit: 2.5, Slope: Estimate{true, 0.01, 0.001}}
+			e.Steadiness = Steadiness{Known: true, Worst: "inlet", Change: 9000, Limit: 2000, Stands: 8, R: 5, RLimit: 2.5}
 		}, circuit(1.6, 353.15, 333.15), Unsteady, "circuit", 1, nil, "the inlet was not steady"},
 		{"wrong order", func(e *Evidence) { e.Marks = []Mark{{"T2", true, ""}, {"T1", true, ""}} }, circuit(2, 333.15, 353.15), Swapped, "circuit", 1, nil, "T1 and T2 are in the wrong order"},
 		{"doubted", func(e *Evidence) { e.Marks = []Mark{{"T2", false, "stuck"}} }, circuit(2, 353.15, 333.15), OutletSensor, "T2", 0.5, nil, "the outlet sensor: stuck"},
@@ -140,7 +140,7 @@ func arbitrary(t *rapid.T) Evidence {
 		Subject: "s", Deviation: estimate("deviation"), Allowance: x("allowance"),
 		Flow: operating("a"), Inlet: operating("b"), Outlet: operating("c"),
 		OtherFlow: operating("d"), OtherInlet: operating("e"), OtherOutlet: operating("f"),
-		Steadiness: Steadiness{rapid.Bool().Draw(t, "known"), rapid.Bool().Draw(t, "steady"), "inlet", x("R"), x("limit"), estimate("slope")},
+		Steadiness: Steadiness{rapid.Bool().Draw(t, "known"), rapid.Bool().Draw(t, "steady"), "inlet", x("change"), x("limit"), x("stands"), x("R"), x("limit")},
 		Witness:    estimate("witness"),
 		Exchanger: Exchanger{
 			"x", estimate("closure"), estimate("conductance"), estimate("shift"), estimate("shift"), rapid.Bool().Draw(t, "ill"),
