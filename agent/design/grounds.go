@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"heatreeve/agent/design/expect"
+	"heatreeve/agent/design/steady"
 )
 
 // Ground is what a verdict rests on.
@@ -31,7 +32,7 @@ type Grounds struct {
 	Why     string          // nothing is expected: why
 	Today   expect.Expected // of the last minute, or the fixed duty before the first
 	Mean                    // of the minutes, where each is whole and something is expected of it
-	Steady  Told
+	Steady  steady.Told
 	Drift   Drift
 }
 

@@ -3,9 +3,11 @@ package design
 import (
 	"fmt"
 	"hash/fnv"
+	"math"
 	"time"
 
 	"heatreeve/agent/design/expect"
+	"heatreeve/agent/design/steady"
 )
 
 // Target is the design of one load.
@@ -40,7 +42,7 @@ type Judge struct {
 	Of      uint64  // of the target; see fingerprint
 	Last    Verdict // Undecided, Holding, Short or Over
 	Window  []Seen  // the last minutes in a row, at most as many as a deviation must last
-	Gate    Gate
+	Gate    steady.Gate
 	Drift   Monitor
 	Block   int   // minutes of Window that are of the present block of the monitor
 	Rests   int64 // since when the load has rested; 0 where it has not
@@ -53,9 +55,11 @@ type Judge struct {
 
 // NewJudge returns a judge of a load with the given target. A lasting of less
 // than a minute counts as one.
-func NewJudge(t Target) *Judge {
+func NewJudge(t Target) *Judge { return newJudge(t, make(limits)) }
+
+func newJudge(t Target, l limits) *Judge {
 	j := &Judge{Of: fingerprint(t), target: t, lasting: t.minutes()}
-	j.Drift = NewMonitor(j.lasting, t.FalseWarnings)
+	j.Drift = l.monitor(j.lasting, t.FalseWarnings)
 	j.decide()
 	return j
 }
@@ -83,7 +87,7 @@ func (j *Judge) Observe(m *Minute, e expect.Expected) {
 func (j *Judge) lapse() {
 	j.Window = j.Window[:0]
 	j.Last, j.Block = Undecided, 0
-	j.Gate = Gate{}
+	j.Gate.Reset()
 }
 
 // Verdict returns the present verdict, given whether the load is blind or idle
@@ -125,4 +129,36 @@ func (j *Judge) restore(was Judge) {
 	was.target, was.lasting, was.Drift.limit = j.target, j.lasting, j.Drift.limit
 	*j = was
 	j.decide()
+}
+
+const (
+	// leastGate and mostGate bound the minutes through which the slopes of a load are laid.
+	leastGate, mostGate = 5, 60
+	// usualAllowance is that by which a load without a design is called steady. Common
+	// practice, no source.
+	usualAllowance = 0.1
+)
+
+// sense tells from the minutes up to m whether the load is steady: a stream by its flow and
+// its temperatures, a vessel by its duty.
+func (j *Judge) sense(m *Minute) {
+	if !m.Whole {
+		j.Gate.Reset()
+		return
+	}
+	allow := j.target.Allow
+	if allow == 0 {
+		allow = usualAllowance
+	}
+	window, limit := min(mostGate, max(leastGate, j.lasting)), allow*math.Abs(m.Duty)
+	if m.Flow == 0 {
+		j.Gate.Observe(window, limit, steady.Sample{Name: "duty", Value: m.Duty, By: 1})
+		return
+	}
+	c := m.capacity()
+	j.Gate.Observe(window, limit,
+		steady.Sample{Name: "flow", Value: m.Flow, By: m.Duty / m.Flow},
+		steady.Sample{Name: "inlet", Value: m.Inlet, By: c},
+		steady.Sample{Name: "outlet", Value: m.Outlet, By: c},
+	)
 }

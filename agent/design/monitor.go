@@ -1,6 +1,10 @@
 package design
 
-import "math"
+import (
+	"math"
+
+	"heatreeve/agent/design/drift"
+)
 
 const (
 	// slack is k of the CUSUM in standard deviations of a window: half of the shift that is
@@ -23,8 +27,8 @@ const (
 // that which, with windows of scatter alone, gives the chosen number of false warnings in a
 // year of windows.
 type Monitor struct {
-	CUSUM Sums
-	Scale Scale
+	CUSUM drift.CUSUM
+	Scale drift.Scale
 	Side  int   // of the deviation that is signalled, −1 or 1; 0 for none
 	Since int64 // when that began
 	Size  float64
@@ -47,21 +51,29 @@ type Drift struct {
 	Size      float64 // estimated deviation since then, a fraction
 }
 
-// NewMonitor returns a monitor of windows of the given minutes that gives so many false
-// warnings a year; 0 is 1.
-func NewMonitor(minutes int, falseWarnings float64) Monitor {
+// limits are those of monitors by the average run length that they are for: finding one takes
+// some milliseconds, and the loads of a site hardly ever differ.
+type limits map[float64]float64
+
+// monitor returns one of windows of the given minutes that gives so many false warnings a
+// year; 0 is 1.
+func (l limits) monitor(minutes int, falseWarnings float64) Monitor {
 	if falseWarnings <= 0 {
 		falseWarnings = 1
 	}
-	return Monitor{limit: threshold(slack, minutesAYear/float64(minutes)/falseWarnings)}
+	run := minutesAYear / float64(minutes) / falseWarnings
+	if l[run] == 0 {
+		l[run] = drift.Threshold(slack, run)
+	}
+	return Monitor{limit: l[run]}
 }
 
 // Observe takes in the mean deviation of a window that began at from, as a fraction, with
 // what of its standard uncertainty lasts and what is random.
 func (m *Monitor) Observe(from int64, d, lasting, random float64) {
-	m.Scale.observe(d)
+	m.Scale.Observe(d)
 	x := Drift{Windows: m.Scale.N, Deviation: d, Dead: 2 * lasting, Limit: m.limit}
-	x.Scatter = max(random, m.Scale.sigma())
+	x.Scatter = max(random, m.Scale.Sigma())
 	x.Waits = max(0, leastWindows-m.Scale.N)
 	if x.Waits == 0 && x.Scatter > 0 {
 		x.X = math.Copysign(max(0, math.Abs(d)-x.Dead), d) / x.Scatter
@@ -77,17 +89,17 @@ func (m *Monitor) Observe(from int64, d, lasting, random float64) {
 // signal took.
 func (m *Monitor) add(from int64, x *Drift) {
 	c := &m.CUSUM
-	c.observe(from, x.X, slack)
+	c.Observe(from, x.X, slack)
 	if m.Side > 0 && c.High == 0 || m.Side < 0 && c.Low == 0 {
 		m.Side, m.Since, m.Size = 0, 0, 0
 	}
 	switch {
 	case c.High >= m.limit && m.Side <= 0:
-		m.Side, m.Since, m.Size = 1, c.HighSince, (slack+c.High/float64(c.HighN))*x.Scatter+x.Dead
+		m.Side, m.Since, m.Size = 1, c.HighSince, c.Size(1, slack)*x.Scatter+x.Dead
 	case c.Low >= m.limit && m.Side >= 0:
-		m.Side, m.Since, m.Size = -1, c.LowSince, -(slack+c.Low/float64(c.LowN))*x.Scatter-x.Dead
+		m.Side, m.Since, m.Size = -1, c.LowSince, c.Size(-1, slack)*x.Scatter-x.Dead
 	}
-	c.High, c.Low = min(c.High, m.limit), min(c.Low, m.limit)
+	c.Bound(m.limit)
 }
 
 // Drift tells of the last window.

@@ -18,9 +18,9 @@ type Plant struct {
 
 // NewPlant returns the judges of a plant that has shown nothing yet.
 func NewPlant(cfg Config) *Plant {
-	p := &Plant{}
+	p, l := &Plant{}, make(limits)
 	for _, t := range cfg.Loads {
-		p.judges = append(p.judges, NewJudge(t))
+		p.judges = append(p.judges, newJudge(t, l))
 	}
 	return p
 }
