@@ -273,3 +273,41 @@ func TestNoFigureYetIsNotExplained(t *testing.T) {
 		t.Errorf("%v, %v", w, err)
 	}
 }
+
+// A load that is short is explained with what to look at first: the design of 300 kW from 80 to
+// 57 °C wants 3.1 kg/s, and 2 flow. So it is when the past is put through once more, as text
+// and as JSON, and while the agent runs.
+func TestWhatToLookAtFirst(t *testing.T) {
+	text := strings.Replace(benchSite, "{duty: 193 kW,", "{duty: 300 kW, inlet: 80 °C, outlet: 57 °C,", 1)
+	l, shut := open(t, parsed(t, text), filepath.Join(t.TempDir(), HistoryFile), store.Options{})
+	defer shut()
+	feed(l, 0, 600)
+	if err := l.commit(clock, true); err != nil {
+		t.Fatal(err)
+	}
+	a := l.accounts
+	live := working.Of(working.Subject{Site: parsed(t, text), Basis: a.engine.Basis(0), Grounds: a.verdicts.Grounds(0), Evidence: a.verdicts.Evidence(0)})
+	h := history{db: l.store, zone: time.UTC, through: l.through.Load}
+	past, err := h.explain(t.Context(), Explanation{Load: "main"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, w := range []*working.Working{live, past} {
+		if len(w.Causes) == 0 {
+			t.Fatalf("no causes: %+v", w)
+		}
+		c := w.Causes[0]
+		if c.Kind != "flow away from design" || c.Subject != "FT" || !(c.Weight > 0.9) || len(c.Alike) != 1 || c.Alike[0] != "flow meter suspect" {
+			t.Errorf("first cause %+v", c)
+		}
+		last := w.Sections[len(w.Sections)-1]
+		if last.Title != "What to look at first" || !strings.HasPrefix(last.Lines[0].Words, "1. flow away from design, FT (weight ") || !strings.Contains(last.Lines[1].Words, "flow at design 3.1") {
+			t.Errorf("section %+v", last)
+		}
+	}
+	for _, w := range a.verdicts.Warnings() {
+		if len(w.Causes) == 0 || string(w.Causes[0].Kind) != live.Causes[0].Kind {
+			t.Errorf("warning %+v", w)
+		}
+	}
+}

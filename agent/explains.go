@@ -108,7 +108,7 @@ func (s *explains) newest(ctx context.Context, load int) (x working.Subject, err
 // answer tells what the newest figure was worked from; in the goroutine of the beat.
 func (a *Agent) answer(r *rhythm, q question) {
 	l := r.books.accounts
-	x := working.Subject{Site: a.site, Load: q.load, Basis: l.engine.Basis(q.load), Grounds: l.verdicts.Grounds(q.load)}
+	x := working.Subject{Site: a.site, Load: q.load, Basis: l.engine.Basis(q.load), Grounds: l.verdicts.Grounds(q.load), Evidence: l.verdicts.Evidence(q.load)}
 	if late := a.o.Now().Sub(time.Unix(0, l.engine.Through())); late > time.Minute {
 		x.Notes = append(x.Notes, fmt.Sprintf("event time has come no further: it is %v behind the clock of this machine", late.Round(time.Second)))
 	}

@@ -5,6 +5,7 @@ import (
 	"time"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/design/cause"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/ingest/quality"
@@ -16,7 +17,12 @@ type Subject struct {
 	Load    int // index into Site.Loads
 	Basis   loads.Basis
 	Grounds design.Grounds // of the verdict, by the minutes before
-	Notes   []string
+	// Evidence is what is known of these minutes, for what to look at first.
+	Evidence cause.Evidence
+	// Past is that only some minutes before were put through once more, so that what goes back
+	// further, the sums of small deviations, is not known.
+	Past  bool
+	Notes []string
 }
 
 // page is the working of a subject as it is written.
@@ -58,6 +64,7 @@ func (p *page) write() {
 		p.readings("Last readings")
 		p.raw()
 		p.verdict()
+		p.causes()
 		return
 	}
 	duty, u := f.Duty, f.Uncertainty
@@ -78,6 +85,7 @@ func (p *page) write() {
 	p.quality()
 	p.note(f.Note)
 	p.verdict()
+	p.causes()
 }
 
 // quality tells how far the readings can be relied on.

@@ -5,11 +5,15 @@ import (
 	"math"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/design/expect"
 )
 
-// verdict writes how the duty stands to its design, and why.
+// verdict writes how the duty stands to what is expected, and why.
 func (p *page) verdict() {
 	g := &p.Grounds
+	if p.Basis.Figure.Measured() && !p.Basis.Figure.Idle && g.Ground != design.NoTarget {
+		p.expected()
+	}
 	p.begin("Verdict: " + p.Verdict)
 	defer p.end()
 	switch {
@@ -19,33 +23,116 @@ func (p *page) verdict() {
 	case p.Basis.Figure.Idle:
 		p.say("idle: nothing is compared while nothing flows or warms")
 		return
-	}
-	if g.Ground == design.NoTarget {
+	case g.Ground == design.NoTarget:
 		p.say("the site file gives no design duty")
 		return
 	}
-	design0 := p.given("Qd", "design duty", g.Today.Duty/1e3, "kW", place(g.Today.Duty/1e3, 10), "site file")
-	p.worked("a", "allowance", named("allow", g.Target.Allow).times(design0), g.Target.Allow*g.Today.Duty/1e3, "kW", place(g.Target.Allow*g.Today.Duty/1e3, fine), "")
-	if g.Ground != design.TooFew && g.Ground != design.NotWhole {
-		p.deviation(design0)
+	if g.Compared() || g.Ground == design.Unsteady {
+		p.deviation()
+		p.steadiness()
 	}
+	p.drift()
 	p.say(p.because())
 }
 
-// deviation writes how far the last minutes are from design.
-func (p *page) deviation(design0 term) {
+// expected writes what is expected of the last minute.
+func (p *page) expected() {
+	x := &p.Grounds.Today
+	p.begin("Expected duty")
+	defer p.end()
+	if !x.Known {
+		p.say("nothing is known of what is expected: " + x.Why)
+		return
+	}
+	words, source := "expected at the conditions of the last minute", ""
+	if _, ok := p.Grounds.Target.Expect.(expect.Fixed); ok {
+		words, source = "design duty", "site file"
+	}
+	p.at["expected"] = p.given("Qd", words, x.Duty/1e3, "kW", place(x.Duty/1e3, 10), source)
+	if x.Lasting > 0 {
+		p.given("ud", "its standard uncertainty, by what lasts", x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
+	}
+	if x.Random > 0 {
+		r := math.Sqrt(x.Random) / 1e3
+		p.given("rd", "and by what changes from minute to minute", r, "kW", place(r, coarse), "")
+	}
+	if x.Joint {
+		p.say("measured and expected duty rest on the same instruments: what their errors do to both is taken together")
+	}
+}
+
+// deviation writes how far the last minutes are from what was expected of them.
+func (p *page) deviation() {
 	g := &p.Grounds
 	n := place(g.Duty/1e3, fine)
 	mean := p.given("Qn", fmt.Sprintf("mean duty of the last %d minutes", g.Lasting), g.Duty/1e3, "kW", n, "minutes before")
-	p.given("Qmin", "the least of their means", (g.Expected+g.Least)/1e3, "kW", n, "")
-	p.given("Qmax", "the greatest", (g.Expected+g.Most)/1e3, "kW", n, "")
-	d := p.worked("d", "deviation", mean.minus(design0), g.Deviation/1e3, "kW", n, "")
-	u := p.given("un", "standard uncertainty of that mean", g.Uncertainty()/1e3, "kW", place(g.Uncertainty()/1e3, coarse+1), byLaw)
-	if g.Uncertainty() > 0 {
-		x := g.Deviation / g.Uncertainty()
-		p.worked("d/u", "deviation in standard uncertainties", d.over(u), x, "1", place(x, 3), "")
+	expected := p.at["expected"]
+	if g.Expected != g.Today.Duty {
+		expected = p.given("En", "mean of what was expected of them", g.Expected/1e3, "kW", n, "minutes before")
+	}
+	p.worked("a", "allowance", named("allow", g.Target.Allow).times(expected), g.Allowance()/1e3, "kW", place(g.Allowance()/1e3, fine), "")
+	d := p.worked("d", "deviation", mean.minus(expected), g.Deviation/1e3, "kW", n, "")
+	p.given("dmin", "the least of a minute", g.Least/1e3, "kW", max(0, n), "")
+	p.given("dmax", "the greatest", g.Most/1e3, "kW", max(0, n), "")
+	p.significance(d)
+}
+
+// significance writes how far the deviation stands out of its uncertainty.
+func (p *page) significance(d term) {
+	g := &p.Grounds
+	x := g.Uncertainty() / 1e3
+	if x == 0 {
+		return
+	}
+	s, r := g.Systematic/1e3, g.Random/1e3
+	lasting := p.given("sd", "standard uncertainty of the deviation, by what lasts", s, "kW", place(s, coarse+1), byLaw)
+	random := p.given("rn", "and by what averages out", r, "kW", place(r, coarse+1), byLaw)
+	u := p.worked("un", "both", sum(squares([]term{lasting, random})).root(), x, "kW", place(x, coarse+1), byLaw)
+	p.worked("Un", "expanded, with the coverage factor 2", number(CoverageFactor).times(u), CoverageFactor*x, "kW", place(x, coarse), "JCGM 100:2008, 6.3.3")
+	z := g.Deviation / g.Uncertainty()
+	p.worked("d/u", "deviation in standard uncertainties", d.over(u), z, "1", place(z, 3), "")
+}
+
+// steadiness writes which quantity moved the duty most.
+func (p *page) steadiness() {
+	s := &p.Grounds.Steady
+	if s.Worst == "" || s.Limit == 0 {
+		return
+	}
+	p.given("Δ", fmt.Sprintf("change of the duty over these minutes by the %s, which moved it most", s.Worst), s.Change/1e3, "kW", place(s.Change/1e3, coarse), "slope of the minutes")
+	p.given("Δa", "let pass as steady", s.Limit/1e3, "kW", place(s.Limit/1e3, fine), "")
+	p.given("t", "that slope in its standard errors", math.Abs(s.T), "1", place(s.T, 3), "")
+}
+
+// drift writes the sums of deviations that are small but stay.
+func (p *page) drift() {
+	x := &p.Grounds.Drift
+	if p.Past || x.Windows == 0 {
+		return
+	}
+	if x.Waits > 0 {
+		p.say(fmt.Sprintf("drift: windows are compared once %d more have shown how they scatter", x.Waits))
+		return
+	}
+	d := p.given("dw", "deviation of the last window, as a part", x.Deviation, "1", place(x.Deviation, fine), "windows that do not overlap")
+	dead := p.given("D", "dead band, twice what of its uncertainty lasts", x.Dead, "1", place(x.Dead, coarse+1), "")
+	scatter := p.given("sw", "standard deviation of windows", x.Scatter, "1", place(x.Scatter, coarse+1), "successive differences, and random parts")
+	if x.X != 0 {
+		beyond := d.minus(dead)
+		if x.X < 0 {
+			beyond = d.plus(dead)
+		}
+		p.worked("x", "beyond the dead band, in standard deviations", beyond.over(scatter), x.X, "1", place(x.X, coarse), "")
+	}
+	p.given("S+", "sum of x − 0.5 upward", x.High, "1", place(x.High, coarse), cusum)
+	p.given("S-", "and downward", x.Low, "1", place(x.Low, coarse), cusum)
+	p.given("h", "limit of the sums, by the false warnings a year", x.Limit, "1", place(x.Limit, coarse), "")
+	if x.Side != 0 {
+		p.say(fmt.Sprintf("drift: the duty has been off by about %s %% since %s", fixed(100*x.Size, 1), p.instant(x.Since)))
 	}
 }
+
+const cusum = "tabular CUSUM: NIST/SEMATECH e-Handbook of Statistical Methods, 6.3.2.3"
 
 // because says what decides.
 func (p *page) because() string {
@@ -60,10 +147,12 @@ func (p *page) because() string {
 		return fmt.Sprintf("undecided: it waits for %d more of %d minutes", g.Lasting-g.Minutes, g.Lasting)
 	case design.NotWhole:
 		return fmt.Sprintf("undecided: it waits for %d minutes in a row that are measured and flow for 54 s or more", g.Lasting)
+	case design.NotExpected:
+		return "undecided: nothing is known of what is expected: " + g.Why
 	case design.Unsteady:
-		return fmt.Sprintf("undecided: the minutes are %s kW apart, by more than the allowance, so the load is not steady; it waits until they are not", fixed((g.Most-g.Least)/1e3, place((g.Most-g.Least)/1e3, 3)))
+		return fmt.Sprintf("undecided: the %s is not steady, and nothing is compared until it is", g.Steady.Worst)
 	case design.Beyond:
-		return fmt.Sprintf("%v: each of the %d minutes lies %s the design by more than the allowance, and their mean by more than its expanded uncertainty of %s kW", g.Verdict, g.Lasting, side, U)
+		return fmt.Sprintf("%v: each of the %d minutes lies %s what was expected by more than the allowance, and their mean by more than its expanded uncertainty of %s kW", g.Verdict, g.Lasting, side, U)
 	case design.TooUnsure:
 		return fmt.Sprintf("undecided: the expanded uncertainty of %s kW is as wide as the allowance; better instruments or a wider allowance would decide", U)
 	case design.Within:

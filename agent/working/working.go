@@ -38,6 +38,7 @@ type Working struct {
 	Fault    string    `json:"fault,omitempty"` // why there is no duty, in a word or two
 	Verdict  string    `json:"verdict,omitempty"`
 	Sections []Section `json:"sections"`
+	Causes   []Cause   `json:"causes,omitempty"` // what to look at first
 	Notes    []string  `json:"notes,omitempty"`
 }
 

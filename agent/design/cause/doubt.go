@@ -87,16 +87,15 @@ func (e *Evidence) unsteady() (Cause, bool) {
 	return c, true
 }
 
-// unsure tells what keeps a deviation from standing out, where it does not: the expectation
-// or the instruments, whichever has the greater part of the variance. Its weight is that
-// part, times the probability that the deviation is by chance, and grows with how wide the
-// uncertainty is beside the allowance.
+// unsure tells why nothing can be decided: the expanded uncertainty is as wide as the
+// allowance, by the expectation or by the instruments, whichever has the greater part of the
+// variance. Its weight is that part, times the probability that the deviation is by chance.
 func (e *Evidence) unsure() []Cause {
-	if !e.Deviation.sound() || e.deviates() || !(e.Allowance > 0) || !finite(e.Allowance) {
+	U := 2 * e.Deviation.Uncertainty
+	if !e.Deviation.sound() || e.deviates() || !(e.Allowance > 0) || !(U >= e.Allowance) {
 		return nil
 	}
-	U := 2 * e.Deviation.Uncertainty
-	chance := (1 - sure(e.Deviation.zeta())) * min(1, U/e.Allowance)
+	chance := 1 - sure(e.Deviation.zeta())
 	var part [2]float64
 	var worst [2]Share
 	for _, s := range e.sortedShares() {
@@ -120,7 +119,7 @@ func (e *Evidence) unsure() []Cause {
 		share := min(1, part[i])
 		causes = append(causes, Cause{
 			Kind: kind, Weight: share * chance, Subject: worst[i].Of,
-			Says: fmt.Sprintf("the deviation does not stand out of its uncertainty, of whose square %s comes from %s, most of it from %s",
+			Says: fmt.Sprintf("the uncertainty is as wide as the allowance, and of its square %s comes from %s, most of it from %s",
 				percent(share), [...]string{"what is measured", "what is expected"}[i], worst[i].Of),
 			Figures: []Figure{
 				{"deviation", e.Deviation.Value, "W", e.Deviation.zeta()},

@@ -20,13 +20,16 @@ func (e *Evidence) away(iso *isolation, real float64) []Cause {
 			{in.words + " at design", in.Design, in.unit, 0},
 			{in.words + " against design", off.Value, in.unit, off.zeta()},
 		}}
-		if c.Weight = e.relative(in, off.Value); e.deviates() {
+		switch {
+		case e.deviates():
 			share := in.ByChange * off.Value / e.Deviation.Value
 			c.Weight = min(explained(share), real)
 			c.Figures = append(c.Figures, Figure{"share of the deviation", share, "1", 0})
 			c.Says = fmt.Sprintf("%s and explains %s of the deviation", describe(in, off.Value), percent(share))
-		} else {
-			c.Says = describe(in, off.Value)
+		case e.Deviation.Known: // and it is none, whatever runs away from design
+			continue
+		default:
+			c.Weight, c.Says = e.relative(in, off.Value), describe(in, off.Value)
 		}
 		c.Weight *= sure(off.zeta())
 		c.Alike = e.misread(iso, in, off.Value)

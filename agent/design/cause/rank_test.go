@@ -60,7 +60,7 @@ func TestRank(t *testing.T) {
 		{"expectation", func(e *Evidence) {
 			e.Deviation = Estimate{true, -2000, 6000}
 			e.Shares = []Share{{"outdoor temperature", true, 0.7}, {"FT", false, 0.3}}
-		}, circuit(2, 353.15, 333.15), ExpectationUnsure, "outdoor temperature", 0.5, nil, "70 % comes from what is expected"},
+		}, circuit(2, 353.15, 333.15), ExpectationUnsure, "outdoor temperature", 0.5, nil, "70 % comes from what is expected, most of it from outdoor temperature"},
 		{"instruments", func(e *Evidence) {
 			e.Deviation = Estimate{true, -2000, 6000}
 			e.Shares = []Share{{"T1", false, 0.2}, {"FT", false, 0.6}}
