@@ -80,6 +80,7 @@ func minuteOf(m *loads.Minute) design.Minute {
 		Random:      random,
 		Flow:        m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet,
 		Counted: m.Witness, Served: m.Compared, Latent: m.Latent > 0,
+		Drivers: m.Drivers[:],
 	}
 	if x.Whole {
 		lastingErrors(&x, m)

@@ -55,6 +55,10 @@ func newReplay(db *store.Store, s *site.Site, load int) *replay {
 			src.Tag = r.take(all.Tags, src.Tag)
 		}
 	}
+	l.Drivers = slices.Clone(l.Drivers)
+	for i, src := range l.Drivers {
+		l.Drivers[i].Tag = r.take(all.Tags, src.Tag)
+	}
 	return r
 }
 

@@ -46,11 +46,26 @@ func rulesOfLoad(cfg *loads.Config, load int) [32]byte {
 	l.Vessel = nil
 	fmt.Fprintf(h, "%+v\n", vessel)
 	l.Stream.Fluid = nil
-	fmt.Fprintf(h, "%+v\n", l)
+	fmt.Fprintf(h, "%+v\n", bookedBy(l))
 	return [32]byte(h.Sum(nil))
 }
 
-// sourcesOf returns all that the load reads.
+// booked are the fields of a load that its heat is booked by: all but its drivers.
+type booked struct {
+	Name       string
+	Stream     loads.Stream
+	Vessel     *loads.Vessel
+	Witness    loads.Source
+	HasWitness bool
+	Running    loads.Source
+	HasRunning bool
+}
+
+func bookedBy(l loads.Load) booked {
+	return booked{l.Name, l.Stream, l.Vessel, l.Witness, l.HasWitness, l.Running, l.HasRunning}
+}
+
+// sourcesOf returns all that the heat of a load is worked from.
 func sourcesOf(l *loads.Load) (all []*loads.Source) {
 	if l.HasWitness {
 		all = append(all, &l.Witness)

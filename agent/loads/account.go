@@ -26,7 +26,7 @@ func (l *loadState) book(g, span int64) {
 // measured accounts for a figure over [g, g+span).
 func (l *loadState) measured(f *Figure, g, span int64) {
 	if l.Counted != nil {
-		l.piece(g, span).measure(f, g, span, l.terms.gives)
+		l.piece(g, span).measure(f, g, span, &l.terms)
 		return
 	}
 	l.enter(f, g, span)
@@ -75,7 +75,7 @@ func (l *loadState) missing(from, to int64) {
 func (l *loadState) enter(f *Figure, g, span int64) {
 	l.turn(g)
 	heat := f.Duty * (float64(span) / 1e9)
-	l.Minute.measure(f, g, span, l.terms.gives)
+	l.Minute.measure(f, g, span, &l.terms)
 	l.Registers.book(givenUp(heat, l.terms.gives), span, f.uncertain())
 	l.Witness.serve(heat)
 	l.entered(g + span)
@@ -107,7 +107,7 @@ func (l *loadState) enterMissing(from, to int64) {
 func (l *loadState) enterPiece(p *piece, rate float64) {
 	l.turn(p.From)
 	s := &p.Sum.Sum
-	l.Minute.add(s, p.From, rate)
+	l.Minute.add(&p.Sum, p.From, rate, &l.terms)
 	l.Registers.add(s, rate)
 	l.Witness.serve(givenUp(s.Given-s.Taken, l.terms.gives) * rate)
 	if s.Bridged+s.Missing > 0 {
@@ -132,7 +132,7 @@ func (l *loadState) turn(g int64) {
 	if !l.Minute.Begun || g < l.Minute.Sum.Start+minute {
 		return
 	}
-	if m, ok := l.Minute.close(l.terms.load); ok {
+	if m, ok := l.Minute.close(&l.terms); ok {
 		l.closed = append(l.closed, m)
 	}
 }

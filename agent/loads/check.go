@@ -20,7 +20,7 @@ func (c *Config) check() error {
 	}
 	for i := range c.Loads {
 		l := &c.Loads[i]
-		if err := errors.Join(c.checkLoad(l), l.checkCounters(c.Tags)); err != nil {
+		if err := errors.Join(c.checkLoad(l), l.checkCounters(c.Tags), l.checkDrivers(c.Tags)); err != nil {
 			errs = append(errs, fmt.Errorf("load %q: %w", l.Name, err))
 		}
 	}
@@ -62,6 +62,19 @@ func (l *Load) checkCounters(tags []Tag) error {
 	}
 	if c := &l.Stream.Corrections; l.counter(tags) >= 0 && (c.HasPump || c.Hold > 0 || c.Stored > 0) {
 		return errors.New("corrections of a stream whose flow is counted: a flow at every instant is wanted for them")
+	}
+	return nil
+}
+
+// checkDrivers says which driver the load cannot have.
+func (l *Load) checkDrivers(tags []Tag) error {
+	if n := len(l.Drivers); n > MaxDrivers {
+		return fmt.Errorf("%d drivers: at most %d can be", n, MaxDrivers)
+	}
+	for _, src := range l.Drivers {
+		if src.Tag < 0 || src.Tag >= len(tags) || tags[src.Tag].Counter != nil {
+			return fmt.Errorf("driver with index %d: a tag that is no counter is wanted", src.Tag)
+		}
 	}
 	return nil
 }

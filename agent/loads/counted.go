@@ -96,7 +96,7 @@ func (l *loadState) settle(p *piece, c *count) {
 	case !c.Known:
 		l.enterMissing(p.From, p.To)
 	case c.Amount == 0:
-		l.enter(&Figure{Idle: true, Mark: c.Mark}, p.From, p.To-p.From)
+		l.enter(&Figure{Idle: true, Mark: c.Mark, Drivers: p.Sum.Driven.means(l.terms.drivers)}, p.From, p.To-p.From)
 	default:
 		if c.Mark.Quality() == quality.Uncertain {
 			p.Sum.Sum.Uncertain = p.Sum.Sum.Measured

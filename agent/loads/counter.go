@@ -227,9 +227,11 @@ func (e *Engine) live(load int) Figure {
 	c := &e.tags[l.terms.counter].Count
 	switch {
 	case !c.Known:
-		return f.fail(NoReading, c.Why)
+		f = f.fail(NoReading, c.Why)
+		f.Drivers = l.figure.Drivers
+		return f
 	case c.Amount == 0:
-		f = Figure{At: f.At, Idle: true, Until: f.Until}
+		f = Figure{At: f.At, Idle: true, Until: f.Until, Drivers: f.Drivers}
 	case f.Measured():
 		f.scale(c.rate())
 	}

@@ -318,6 +318,9 @@ func (e *Engine) evaluateAll(g int64) bool {
 			l.fresh = true
 		}
 		l.figure.At = g
+		if l.terms.drivers > 0 {
+			e.drive(i, g)
+		}
 		if l.Counted != nil {
 			l.counting = e.counting(i, g)
 		}

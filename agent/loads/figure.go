@@ -75,9 +75,12 @@ type Figure struct {
 	// Mark is the worst of those of the readings that the figure was worked from, and By
 	// the first tag that has it: the flow before the temperatures. Readings in a fitted rate
 	// count, and those of the parcels that leave a hold.
-	Mark  quality.Mark
-	By    string
-	Until int64 // instant at which the figure must be worked anew, where no tag reports before
+	Mark quality.Mark
+	By   string
+	// Drivers are the values of the load's drivers, SI, NaN where a tag has none; also beside
+	// a fault.
+	Drivers [MaxDrivers]float64
+	Until   int64 // instant at which the figure must be worked anew, where no tag reports before
 }
 
 // mark takes in the mark of a reading that the figure uses.

@@ -302,6 +302,10 @@ type Load struct {
 	// [quality.NotZero].
 	Running    Source
 	HasRunning bool
+	// Drivers are the means that a verdict on the load wants to know, at most [MaxDrivers]:
+	// the outdoor temperature, a rate of production. They take no part in any figure, and one
+	// that is missing or bad is NaN and makes no load blind.
+	Drivers []Source
 }
 
 // gives tells which way the load serves.

@@ -1,5 +1,7 @@
 package loads
 
+import "slices"
+
 // loadState is what the engine keeps of one load. Exported fields are part of the
 // engine's saved state.
 type loadState struct {
@@ -11,6 +13,7 @@ type loadState struct {
 	Witness   *witness // nil where there is none
 	Trends    []trend  // of the tags whose change counts; see trendsOf
 	Hold      queue    // what is between the thermometers of a stream that has a hold
+	Drivers   []string // of which the sums are; see driversOf
 	terms     terms
 	figure    Figure   // at one unit of flow a second where it is counted
 	fresh     bool     // figure was worked from the values held now
@@ -27,6 +30,7 @@ type terms struct {
 	counter      int     // tag that counts the flow; -1 where it is a rate
 	step         float64 // of the counter's numbers
 	witness      int     // tag of the witness; -1 where there is none
+	drivers      int     // how many there are
 }
 
 // newLoad returns the empty accounts of a load.
@@ -34,8 +38,8 @@ func newLoad(cfg *Config, load int) loadState {
 	of := &cfg.Loads[load]
 	l := loadState{terms: terms{
 		load: load, grid: cfg.Grid, bridge: cfg.Bridge, gives: of.gives(),
-		counter: of.counter(cfg.Tags), witness: -1,
-	}}
+		counter: of.counter(cfg.Tags), witness: -1, drivers: len(of.Drivers),
+	}, Drivers: driversOf(cfg, load)}
 	if i := l.terms.counter; i >= 0 {
 		l.Counted, l.terms.step = new(counted), cfg.Tags[i].Resolution
 	}
@@ -53,6 +57,10 @@ func newLoad(cfg *Config, load int) loadState {
 func (l *loadState) resume(was loadState, of *saved, next int64) {
 	was.terms = l.terms
 	was.terms.grid = of.Grid
+	if !slices.Equal(was.Drivers, l.Drivers) {
+		was.undriven()
+		was.Drivers = l.Drivers
+	}
 	waited := next - was.decided(of.Next)
 	if of.Grid != l.terms.grid {
 		l.Registers, l.Minute = was.Registers, was.Minute

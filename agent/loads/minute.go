@@ -38,6 +38,9 @@ type Minute struct {
 	Inlet, Outlet     float64 // K
 	Pressure          float64 // Pa
 	Content           float64 // K, of a vessel, at rest or not
+	// Drivers are means over that part of the measured time in which the driver had a value,
+	// idle or not, in SI; NaN where it had none, and 0 beyond the load's last.
+	Drivers [MaxDrivers]float64
 }
 
 // Doubt returns what leaves the mean duty of the measured time open: the standard
@@ -70,14 +73,16 @@ func (s *Shares) GobDecode(b []byte) error {
 // minuteSum gathers a [Minute]; means are kept as time-weighted sums in units of
 // the figure times seconds.
 type minuteSum struct {
-	Sum   Minute
-	Begun bool
+	Sum    Minute
+	Begun  bool
+	Driven driven
 }
 
 // at makes the sum that of the minute of g.
 func (m *minuteSum) at(g int64) *Minute {
 	if !m.Begun {
 		m.Sum = Minute{Start: floor(g, minute), DutyMin: math.Inf(1), DutyMax: math.Inf(-1)}
+		m.Driven = driven{}
 		m.Begun = true
 	}
 	return &m.Sum
@@ -99,12 +104,15 @@ func (m *minuteSum) bridge(heat float64, g, span int64) {
 }
 
 // measure adds a figure over [g, g+span).
-func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
+func (m *minuteSum) measure(f *Figure, g, span int64, t *terms) {
 	s := m.at(g)
+	if t.drivers > 0 {
+		m.Driven.take(&f.Drivers, t.drivers, span)
+	}
 	dt := float64(span) / 1e9
 	s.Measured += span
 	s.Duty += f.Duty * dt
-	if heat := givenUp(f.Duty*dt, gives); heat >= 0 {
+	if heat := givenUp(f.Duty*dt, t.gives); heat >= 0 {
 		s.Given += heat
 	} else {
 		s.Taken -= heat
@@ -134,8 +142,11 @@ func (m *minuteSum) measure(f *Figure, g, span int64, gives bool) {
 
 // add adds a part of the minute, that of g, which was summed for one unit of flow a
 // second where the flow was rate.
-func (m *minuteSum) add(o *Minute, g int64, rate float64) {
-	s := m.at(g)
+func (m *minuteSum) add(p *minuteSum, g int64, rate float64, t *terms) {
+	s, o := m.at(g), &p.Sum
+	if t.drivers > 0 {
+		m.Driven.add(&p.Driven, t.drivers)
+	}
 	s.Measured += o.Measured
 	s.Idle += o.Idle
 	s.Bridged += o.Bridged
@@ -164,10 +175,13 @@ func (m *minuteSum) add(o *Minute, g int64, rate float64) {
 
 // close returns the finished minute and starts afresh; false where nothing of it
 // was measured or bridged.
-func (m *minuteSum) close(load int) (Minute, bool) {
+func (m *minuteSum) close(t *terms) (Minute, bool) {
 	s := m.Sum
 	m.Begun = false
-	s.Load = load
+	s.Load = t.load
+	if t.drivers > 0 {
+		s.Drivers = m.Driven.means(t.drivers)
+	}
 	if s.Measured == 0 {
 		s.DutyMin, s.DutyMax = 0, 0
 		return s, s.Bridged > 0
