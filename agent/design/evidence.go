@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"heatreeve/agent/design/cause"
+	"heatreeve/agent/design/steady"
 )
 
 // Attest are what a witness counted and what the load served in the same spans, J, of which
@@ -34,6 +35,7 @@ func (j *Judge) Evidence() cause.Evidence {
 	e.Steadiness = cause.Steadiness{
 		Known: len(j.Window) == j.lasting, Steady: g.Steady.Steady, Worst: g.Steady.Worst,
 		Change: g.Steady.Change, Limit: g.Steady.Limit, Stands: math.Abs(g.Steady.T),
+		R: g.Steady.R, RLimit: steady.Rejects,
 	}
 	if g.Compared() || g.Ground == Unsteady {
 		j.compared(&e, run)

@@ -6,6 +6,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/design/expect"
+	"heatreeve/agent/design/steady"
 )
 
 // verdict writes how the duty stands to what is expected, and why.
@@ -93,16 +94,37 @@ func (p *page) significance(d term) {
 	p.worked("d/u", "deviation in standard uncertainties", d.over(u), z, "1", place(z, 3), "")
 }
 
-// steadiness writes which quantity moved the duty most.
+// steadiness writes which quantity moved the duty most: it is steady where that is let pass,
+// or neither its R-statistic nor its slope stand out.
 func (p *page) steadiness() {
 	s := &p.Grounds.Steady
 	if s.Worst == "" || s.Limit == 0 {
 		return
 	}
-	p.given("Δ", fmt.Sprintf("change of the duty over these minutes by the %s, which moved it most", s.Worst), s.Change/1e3, "kW", place(s.Change/1e3, coarse), "slope of the minutes")
-	p.given("Δa", "let pass as steady", s.Limit/1e3, "kW", place(s.Limit/1e3, fine), "")
-	p.given("t", "that slope in its standard errors", math.Abs(s.T), "1", place(s.T, 3), "")
+	p.given("Δ", fmt.Sprintf("change of the duty by the %s, which moved it most", s.Worst), s.Change/1e3, "kW", place(s.Change/1e3, coarse), bySlope)
+	p.given("Δa", "let pass as steady, the allowance now", s.Limit/1e3, "kW", place(s.Limit/1e3, fine), "")
+	if unit := slopeUnits[s.Worst]; unit != "" {
+		p.given("b", "its slope", s.Slope, unit, place(s.Slope, coarse), bySlope)
+	}
+	p.given("t", "that slope in its standard errors", s.T, "1", place(s.T, 3), "")
+	if s.R > 0 {
+		p.given("R", fmt.Sprintf("its R-statistic, about 1 at rest and above %g where it moves", steady.Rejects), s.R, "1", place(s.R, 3), byRatio)
+	}
+	switch {
+	case s.Steady && s.Change <= s.Limit:
+		p.say("steady: that moves the duty by no more than is let pass")
+	case s.Steady:
+		p.say("steady: neither its slope nor its R-statistic stands out")
+	}
 }
+
+// slopeUnits are those of the slopes of what a gate looks at.
+var slopeUnits = map[string]string{"flow": "kg/s/min", "inlet": "K/min", "outlet": "K/min"}
+
+const (
+	bySlope = "least squares through the minutes"
+	byRatio = "Cao and Rhinehart, J. Process Control 5 (1995)"
+)
 
 // drift writes the sums of deviations that are small but stay.
 func (p *page) drift() {
