@@ -8,6 +8,7 @@ import (
 	"heatreeve/agent/design/expect"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
+	"heatreeve/agent/working"
 )
 
 // designOf is what the loads and exchangers of a site should do, in their order.
@@ -81,6 +82,9 @@ func minuteOf(m *loads.Minute) design.Minute {
 		Flow:        m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet,
 		Counted: m.Witness, Served: m.Compared, Latent: m.Latent > 0,
 		Drivers: m.Drivers[:],
+	}
+	if m.By != "" {
+		x.Doubt = working.Doubted(m.By, m.Mark)
 	}
 	if x.Whole {
 		lastingErrors(&x, m)

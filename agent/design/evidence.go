@@ -40,6 +40,9 @@ func (j *Judge) Evidence() cause.Evidence {
 	if g.Compared() || g.Ground == Unsteady {
 		j.compared(&e, run)
 	}
+	if run.Doubt.Tag != "" {
+		e.Marks = append(e.Marks, run.Doubt)
+	}
 	if run.Latent {
 		e.Margins = append(e.Margins, cause.Margin{Kind: cause.NearDewPoint, Tag: j.target.Tags.Inlet})
 	}
@@ -67,6 +70,9 @@ func (j *Judge) ran() (run Seen, ok bool) {
 		run.At = run.At.plus(w, s.At)
 		run.Errors = run.Errors.plus(w, s.Errors)
 		run.Latent = run.Latent || s.Latent
+		if s.Doubt.Tag != "" {
+			run.Doubt = s.Doubt
+		}
 	}
 	return run, true
 }

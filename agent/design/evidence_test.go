@@ -78,6 +78,22 @@ func TestSharesAddUp(t *testing.T) {
 	}
 }
 
+// A tag of which an uncertain reading was used is told, with the reason.
+func TestDoubtedTagIsTold(t *testing.T) {
+	j := NewJudge(circuit)
+	for m := range int64(5) {
+		x := runs(m*nanosecondsPerMinute, circuit.Point, 1)
+		if m == 2 {
+			x.Doubt = cause.Mark{Tag: "T2", Reason: "disagrees"}
+		}
+		observe(j, x)
+	}
+	causes := cause.Rank(j.Evidence())
+	if len(causes) != 1 || causes[0].Kind != cause.OutletSensor || causes[0].Subject != "T2" || causes[0].Says != "the outlet sensor: disagrees" {
+		t.Errorf("%+v", causes)
+	}
+}
+
 // While the load is not steady, that comes first.
 func TestUnsteadyComesFirst(t *testing.T) {
 	j := NewJudge(circuit)

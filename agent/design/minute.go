@@ -4,6 +4,7 @@ import (
 	"math"
 	"time"
 
+	"heatreeve/agent/design/cause"
 	"heatreeve/agent/design/expect"
 )
 
@@ -27,7 +28,8 @@ type Minute struct {
 	// Counted is what the load's witness counted, J, in the spans between two of its readings
 	// that ended in this minute, and Served the heat that the load served in them.
 	Counted, Served float64
-	Latent          bool // for a part of it vapour condensed, or may have: the duty is the sensible part
+	Latent          bool       // for a part of it vapour condensed, or may have: the duty is the sensible part
+	Doubt           cause.Mark // of the worst reading that was used; its tag is empty where none is uncertain
 }
 
 // Point is where a stream runs: kg/s and K. What is 0 is not known.
@@ -55,6 +57,7 @@ type Seen struct {
 	Lasting, Random float64 // of the measured duty: standard uncertainty, W, and variance, W²
 	At, Errors      Point   // where the stream ran, and the standard uncertainties of that by what lasts
 	Latent          bool
+	Doubt           cause.Mark
 }
 
 // compare sets a minute beside what is expected of it.
@@ -63,7 +66,7 @@ func compare(m *Minute, e expect.Expected) Seen {
 		Start: m.Start, Whole: m.Whole, Idle: m.Idle, Duty: m.Duty, Expected: e,
 		Lasting: m.Uncertainty, Random: m.Random,
 		At: Point{m.Flow, m.Inlet, m.Outlet}, Errors: Point{m.FlowError, m.InletError, m.OutletError},
-		Latent: m.Latent,
+		Latent: m.Latent, Doubt: m.Doubt,
 	}
 }
 

@@ -245,3 +245,29 @@ func TestScreensSameBits(t *testing.T) {
 		}
 	}
 }
+
+// A minute has the worst mark of the readings that it used, and the first tag that had it.
+func TestMarkOfAMinute(t *testing.T) {
+	e := engine(t, plant(liquid))
+	var minutes []Minute
+	for s := 0.0; s < 300; s += 5 {
+		in := at(s, 2, 350, 330)
+		if s >= 130 && s < 140 {
+			in[2].Mark = quality.Substitute
+		}
+		minutes = e.Advance(Beat{in, through(s + 4)}, minutes)
+	}
+	var marked int
+	for _, m := range minutes {
+		if m.Mark == quality.None && m.By == "" && m.Uncertain == 0 {
+			continue
+		}
+		marked++
+		if m.Mark != quality.Substitute || m.By != "TO" || m.Uncertain == 0 {
+			t.Errorf("minute %d: %v by %q, %d ns uncertain", m.Start, m.Mark, m.By, m.Uncertain)
+		}
+	}
+	if marked == 0 || marked > 2 || len(minutes) < 4 {
+		t.Errorf("%d of %d minutes are marked, want the one or two that hold the 10 s", marked, len(minutes))
+	}
+}

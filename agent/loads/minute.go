@@ -4,6 +4,8 @@ import (
 	"encoding/binary"
 	"fmt"
 	"math"
+
+	"heatreeve/ingest/quality"
 )
 
 // Minute is what a load did in one minute of event time. Means are over the
@@ -20,11 +22,14 @@ type Minute struct {
 	// of the minute that is accounted for.
 	Bridged                    int64
 	BridgedGiven, BridgedTaken float64
-	Latent                     int64   // ns within Measured whose duty is the sensible part only
-	Uncertain                  int64   // ns within Measured for which an uncertain reading was used
-	Duty                       float64 // mean, W, positive in the load's service
-	DutyMin, DutyMax           float64 // of the grid's figures, W
-	Uncertainty                float64 // mean standard uncertainty, W
+	Latent                     int64 // ns within Measured whose duty is the sensible part only
+	Uncertain                  int64 // ns within Measured for which an uncertain reading was used
+	// Mark is the worst of those readings', and By the first tag that had it.
+	Mark             quality.Mark
+	By               string
+	Duty             float64 // mean, W, positive in the load's service
+	DutyMin, DutyMax float64 // of the grid's figures, W
+	Uncertainty      float64 // mean standard uncertainty, W
 	// Systematic is the signed contribution of each part to the uncertainty of the
 	// measured heat served, J: it adds up over minutes as it stands. Random is the
 	// variance by what does not last, J²: it adds up as variances do.
@@ -122,6 +127,7 @@ func (m *minuteSum) measure(f *Figure, g, span int64, t *terms) {
 	s.Random += f.Variance * dt
 	if f.uncertain() {
 		s.Uncertain += span
+		s.doubt(f.Mark, f.By)
 	}
 	if f.Idle {
 		s.Idle += span
@@ -140,6 +146,13 @@ func (m *minuteSum) measure(f *Figure, g, span int64, t *terms) {
 	s.Pressure += f.Pressure * dt
 }
 
+// doubt takes in the mark of a tag's reading.
+func (m *Minute) doubt(mark quality.Mark, by string) {
+	if worst := quality.Worse(m.Mark, mark); worst != m.Mark {
+		m.Mark, m.By = worst, by
+	}
+}
+
 // add adds a part of the minute, that of g, which was summed for one unit of flow a
 // second where the flow was rate.
 func (m *minuteSum) add(p *minuteSum, g int64, rate float64, t *terms) {
@@ -153,6 +166,7 @@ func (m *minuteSum) add(p *minuteSum, g int64, rate float64, t *terms) {
 	s.Missing += o.Missing
 	s.Latent += o.Latent
 	s.Uncertain += o.Uncertain
+	s.doubt(o.Mark, o.By)
 	s.Given += o.Given * rate
 	s.Taken += o.Taken * rate
 	s.BridgedGiven += o.BridgedGiven * rate

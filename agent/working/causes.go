@@ -3,6 +3,7 @@ package working
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"heatreeve/agent/design/cause"
@@ -95,8 +96,9 @@ func figures(all []Figure) string {
 // evidence adds to that of the minutes before what the figure itself tells.
 func (p *page) evidence() cause.Evidence {
 	e, f := p.Evidence, &p.Basis.Figure
-	if f.Mark != quality.None && f.By != "" {
-		e.Marks = append(e.Marks[:len(e.Marks):len(e.Marks)], cause.Mark{Tag: f.By, Reason: f.Mark.String()})
+	known := func(m cause.Mark) bool { return m.Tag == f.By }
+	if f.Mark != quality.None && f.By != "" && !slices.ContainsFunc(e.Marks, known) {
+		e.Marks = append(e.Marks[:len(e.Marks):len(e.Marks)], Doubted(f.By, f.Mark))
 	}
 	near := func(k cause.Kind) {
 		e.Margins = append(e.Margins[:len(e.Margins):len(e.Margins)], cause.Margin{Kind: k})
@@ -111,4 +113,12 @@ func (p *page) evidence() cause.Evidence {
 		near(cause.NearFreezing)
 	}
 	return e
+}
+
+// Doubted is what an uncertain reading of a tag tells the causes.
+func Doubted(tag string, m quality.Mark) cause.Mark {
+	return cause.Mark{
+		Tag: tag, Reason: m.String(), Order: m == quality.WrongOrder,
+		Tested: m == quality.Disagrees || m == quality.NotZero,
+	}
 }

@@ -9,7 +9,11 @@ import (
 
 // doubtWeight is that of a reading which signal validation doubts, without a figure, and
 // remarkWeight that of a remark of the load. Common practice, no source.
+//
+// testWeight is that of a test which a reading fails by more than two standard
+// uncertainties: the probability that it does not do so by chance.
 const (
+	testWeight   = 0.95
 	doubtWeight  = 0.5
 	remarkWeight = 0.25
 )
@@ -26,8 +30,12 @@ func (e *Evidence) marked() []Cause {
 		}
 		for _, in := range e.inputs() {
 			if in.Tag == m.Tag {
+				weight := doubtWeight
+				if m.Tested {
+					weight = testWeight
+				}
 				causes = append(causes, Cause{
-					Kind: in.kind, Weight: doubtWeight, Subject: m.Tag,
+					Kind: in.kind, Weight: weight, Subject: m.Tag,
 					Says: fmt.Sprintf("the %s: %s", instrument(in.words), m.Reason),
 				})
 				break

@@ -73,6 +73,7 @@ type Test struct {
 type Mark struct {
 	Tag    string
 	Order  bool   // the temperatures are in the wrong order for the service
+	Tested bool   // a test failed by more than two standard uncertainties, such as against a sensor beside it
 	Reason string // such as "the readings are doubted: spike"
 }
 

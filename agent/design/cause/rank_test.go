@@ -47,8 +47,9 @@ func TestRank(t *testing.T) {
 		{"unsteady", func(e *Evidence) {
 			e.Steadiness = Steadiness{Known: true, Worst: "inlet", Change: 9000, Limit: 2000, Stands: 8, R: 5, RLimit: 2.5}
 		}, circuit(1.6, 353.15, 333.15), Unsteady, "circuit", 1, nil, "the inlet was not steady"},
-		{"wrong order", func(e *Evidence) { e.Marks = []Mark{{"T2", true, ""}, {"T1", true, ""}} }, circuit(2, 333.15, 353.15), Swapped, "circuit", 1, nil, "T1 and T2 are in the wrong order"},
-		{"doubted", func(e *Evidence) { e.Marks = []Mark{{"T2", false, "stuck"}} }, circuit(2, 353.15, 333.15), OutletSensor, "T2", 0.5, nil, "the outlet sensor: stuck"},
+		{"wrong order", func(e *Evidence) { e.Marks = []Mark{{Tag: "T2", Order: true}, {Tag: "T1", Order: true}} }, circuit(2, 333.15, 353.15), Swapped, "circuit", 1, nil, "T1 and T2 are in the wrong order"},
+		{"doubted", func(e *Evidence) { e.Marks = []Mark{{Tag: "T2", Reason: "stuck"}} }, circuit(2, 353.15, 333.15), OutletSensor, "T2", 0.5, nil, "the outlet sensor: stuck"},
+		{"disagrees", func(e *Evidence) { e.Marks = []Mark{{Tag: "FT", Tested: true, Reason: "not-zero"}} }, circuit(2, 353.15, 333.15), FlowMeter, "FT", 0.95, nil, "the flow meter: not-zero"},
 		// The outlet reads 2 K too high beside its twin: 2·4180·2 = 16.72 kW, the whole deviation.
 		// Nothing tells which of the two is wrong but that the twin moves no duty.
 		{"pair", func(e *Evidence) { e.Tests = []Test{{"redundant sensor", "T2", "T2b", Estimate{true, 2, 0.15}}} }, circuit(2, 353.15, 335.15), OutletSensor, "T2", 0.99, []Kind{OutletSensor}, "the outlet sensor reads 2 K too high, which explains 100 % of the deviation"},
@@ -150,7 +151,7 @@ func arbitrary(t *rapid.T) Evidence {
 	tags := rapid.SampledFrom([]string{"", "a", "b", "c", "d", "e", "f", "g"})
 	for range rapid.IntRange(0, 4).Draw(t, "tests") {
 		e.Tests = append(e.Tests, Test{"test", tags.Draw(t, "tag"), tags.Draw(t, "against"), estimate("test")})
-		e.Marks = append(e.Marks, Mark{tags.Draw(t, "tag"), rapid.Bool().Draw(t, "order"), "doubted"})
+		e.Marks = append(e.Marks, Mark{tags.Draw(t, "tag"), rapid.Bool().Draw(t, "order"), rapid.Bool().Draw(t, "tested"), "doubted"})
 		e.Margins = append(e.Margins, Margin{rapid.SampledFrom(Kinds()).Draw(t, "kind"), tags.Draw(t, "tag"), estimate("margin")})
 		e.Shares = append(e.Shares, Share{tags.Draw(t, "of"), rapid.Bool().Draw(t, "expected"), x("share")})
 		e.Exchanger.Days = append(e.Exchanger.Days, Day{rapid.Int64Range(0, 50).Draw(t, "day"), x("day"), x("day")})
