@@ -12,7 +12,7 @@ const rareDrift = 5
 func course(days []Day) (step, ramp float64, ok bool) {
 	sound := make([]Day, 0, len(days))
 	for _, d := range days {
-		if finite(d.Value, d.Uncertainty) && d.Uncertainty > 0 && (len(sound) == 0 || d.Day > sound[len(sound)-1].Day) {
+		if d.Conductance.sound() && (len(sound) == 0 || d.Day > sound[len(sound)-1].Day) {
 			sound = append(sound, d)
 		}
 	}
@@ -42,14 +42,14 @@ func course(days []Day) (step, ramp float64, ok bool) {
 func leftBy(days []Day, shape func(int64) float64) float64 {
 	var w, x, y float64
 	for _, d := range days {
-		v := 1 / (d.Uncertainty * d.Uncertainty)
-		w, x, y = w+v, x+v*shape(d.Day), y+v*d.Value
+		v := weight(d)
+		w, x, y = w+v, x+v*shape(d.Day), y+v*d.Conductance.Value
 	}
 	x, y = x/w, y/w
 	var xx, xy, yy float64
 	for _, d := range days {
-		v := 1 / (d.Uncertainty * d.Uncertainty)
-		dx, dy := shape(d.Day)-x, d.Value-y
+		v := weight(d)
+		dx, dy := shape(d.Day)-x, d.Conductance.Value-y
 		xx, xy, yy = xx+v*dx*dx, xy+v*dx*dy, yy+v*dy*dy
 	}
 	if !(xx > 0) {
@@ -57,6 +57,8 @@ func leftBy(days []Day, shape func(int64) float64) float64 {
 	}
 	return max(0, yy-xy/xx*xy)
 }
+
+func weight(d Day) float64 { return 1 / (d.Conductance.Uncertainty * d.Conductance.Uncertainty) }
 
 // againstCourse is what the course of the days adds to what a fault leaves over: fouling
 // grows, an instrument steps and seldom drifts.

@@ -91,10 +91,11 @@ type Share struct {
 	Share       float64
 }
 
-// Day is one day's mean of ln(UA/UA_clean) with its standard uncertainty by what changes.
+// Day is what one day's steady windows come to on average, with standard uncertainties by
+// what changes.
 type Day struct {
-	Day                int64 // any count of days
-	Value, Uncertainty float64
+	Day                  int64 // any count of days
+	Conductance, Closure Estimate
 }
 
 // Exchanger is what the two sides of an exchanger tell. The zero value tells nothing.
@@ -105,7 +106,8 @@ type Exchanger struct {
 	Closure, Conductance Estimate
 	// ClosureShift and ConductanceShift are how far both have moved since they were last in
 	// order, with the uncertainty by what changes only: lasting errors cancel, so they tell
-	// faults apart far more sharply. Unknown where there is no time before.
+	// faults apart far more sharply. Where they are not known, they are told from Days and
+	// Since, if these reach far enough.
 	ClosureShift, ConductanceShift Estimate
 	IllConditioned                 bool    // effectiveness is so near its limit that it tells no conductance
 	Effectiveness, Limit           float64 // 0 where not known
@@ -114,6 +116,7 @@ type Exchanger struct {
 	Fouling     Estimate // R_f, K/W
 	Trend       Estimate // of R_f, K/W a week
 	Days        []Day    // oldest first
+	Since       int64    // day on which what is off began, by a monitor; 0 where none says
 }
 
 // Evidence is what is known of one load or one exchanger over one window, in SI. What is

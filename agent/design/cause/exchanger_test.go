@@ -65,14 +65,15 @@ func gathered(x state, before *state) Evidence {
 	var e Evidence
 	e.Exchanger.Name = "exchanger"
 	var uc, ul, sc, sl float64
-	for i, o := range []*Operating{&e.Flow, &e.Inlet, &e.Outlet, &e.OtherFlow, &e.OtherInlet, &e.OtherOutlet} {
+	six := e.six()
+	for i, o := range six {
 		*o = Operating{Known: true, Tag: fmt.Sprintf("tag %d", i), Value: x[i], Uncertainty: lasting[i], Scatter: scatter[i], Follows: true}
-		up, down := x, x
-		step := lasting[i] / 10
-		up[i], down[i] = x[i]+step, x[i]-step
-		c1, l1, q1 := figures(up)
-		c0, l0, q0 := figures(down)
-		o.Error = Effect{Closure: (c1 - c0) / 2 / step, Conductance: (l1 - l0) / 2 / step, Duty: (q1 - q0) / 2 / step}
+	}
+	e.Signatures(func(x [6]float64) (s Effect, ok bool) {
+		s.Closure, s.Conductance, s.Duty = figures(x)
+		return s, true
+	})
+	for i, o := range six {
 		uc, ul = math.Hypot(uc, o.Error.Closure*lasting[i]), math.Hypot(ul, o.Error.Conductance*lasting[i])
 		sc, sl = math.Hypot(sc, o.Error.Closure*scatter[i]), math.Hypot(sl, o.Error.Conductance*scatter[i])
 	}
@@ -210,7 +211,7 @@ func TestCourseTellsFouling(t *testing.T) {
 	} {
 		e.Exchanger.Days = nil
 		for day := range 30 {
-			e.Exchanger.Days = append(e.Exchanger.Days, Day{int64(day), tt.shape(day), 0.01})
+			e.Exchanger.Days = append(e.Exchanger.Days, Day{Day: int64(day), Conductance: Estimate{true, tt.shape(day), 0.01}})
 		}
 		causes := Rank(e)
 		if len(causes) == 0 || causes[0].Kind != tt.first {

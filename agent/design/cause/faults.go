@@ -57,15 +57,16 @@ func (e *Evidence) statistics() []statistic {
 	x := &e.Exchanger
 	closure := func(f fault) float64 { return f.effect.Closure }
 	conductance := func(f fault) float64 { return f.effect.Conductance }
-	if x.ClosureShift.sound() {
-		add("shift of the closure", "W", x.ClosureShift, true, closure)
+	closureShift, conductanceShift := x.shifts()
+	if closureShift.sound() {
+		add("shift of the closure", "W", closureShift, true, closure)
 	} else {
 		add("closure", "W", x.Closure, false, closure)
 	}
 	switch {
 	case x.IllConditioned:
-	case x.ConductanceShift.sound():
-		add("shift of ln(UA/UA clean)", "1", x.ConductanceShift, true, conductance)
+	case conductanceShift.sound():
+		add("shift of ln(UA/UA clean)", "1", conductanceShift, true, conductance)
 	default:
 		add("ln(UA/UA clean)", "1", x.Conductance, false, conductance)
 	}

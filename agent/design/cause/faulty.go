@@ -35,7 +35,7 @@ func (e *Evidence) faulty(iso *isolation, faults []fault) (causes []Cause, misre
 		if f.isDesign {
 			c.Figures = append(c.Figures, e.fouling()...)
 		}
-		c.Says = says(f, share, known)
+		c.Says = e.says(f, share, known)
 		causes = append(causes, c)
 	}
 	return causes, misread
@@ -107,10 +107,15 @@ func (e *Evidence) fouling() []Figure {
 	return figures
 }
 
-// says tells what is wrong, and by how much.
-func says(f found, share float64, known bool) string {
+// says tells what is wrong, and by how much. A conductance is told against clean, and not
+// against before, where that is known.
+func (e *Evidence) says(f found, share float64, known bool) string {
 	var text string
-	switch {
+	switch l := e.Exchanger.Conductance; {
+	case f.isDesign && stands(l) && l.Value < 0:
+		text = fmt.Sprintf("conductance is %s below clean", percent(1-math.Exp(l.Value)))
+	case f.isDesign && e.Exchanger.shifted():
+		text = fmt.Sprintf("conductance is %s below what it was", percent(1-math.Exp(f.size)))
 	case f.isDesign:
 		text = fmt.Sprintf("conductance is %s below clean", percent(1-math.Exp(f.size)))
 	case f.stranger:

@@ -145,7 +145,7 @@ func arbitrary(t *rapid.T) Evidence {
 		Witness:    estimate("witness"),
 		Exchanger: Exchanger{
 			"x", estimate("closure"), estimate("conductance"), estimate("shift"), estimate("shift"), rapid.Bool().Draw(t, "ill"),
-			x("effectiveness"), x("limit"), x("by"), estimate("fouling"), estimate("trend"), nil,
+			x("effectiveness"), x("limit"), x("by"), estimate("fouling"), estimate("trend"), nil, rapid.Int64Range(0, 50).Draw(t, "since"),
 		},
 	}
 	tags := rapid.SampledFrom([]string{"", "a", "b", "c", "d", "e", "f", "g"})
@@ -154,7 +154,7 @@ func arbitrary(t *rapid.T) Evidence {
 		e.Marks = append(e.Marks, Mark{tags.Draw(t, "tag"), rapid.Bool().Draw(t, "order"), rapid.Bool().Draw(t, "tested"), "doubted"})
 		e.Margins = append(e.Margins, Margin{rapid.SampledFrom(Kinds()).Draw(t, "kind"), tags.Draw(t, "tag"), estimate("margin")})
 		e.Shares = append(e.Shares, Share{tags.Draw(t, "of"), rapid.Bool().Draw(t, "expected"), x("share")})
-		e.Exchanger.Days = append(e.Exchanger.Days, Day{rapid.Int64Range(0, 50).Draw(t, "day"), x("day"), x("day")})
+		e.Exchanger.Days = append(e.Exchanger.Days, Day{rapid.Int64Range(0, 50).Draw(t, "day"), estimate("day"), estimate("day")})
 	}
 	return e
 }
