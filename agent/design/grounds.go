@@ -29,9 +29,10 @@ type Grounds struct {
 	Target  Target
 	Minutes int // that there are, of Lasting
 	Lasting int
-	Why     string          // nothing is expected: why
-	Today   expect.Expected // of the last minute, or the fixed duty before the first
-	Mean                    // of the minutes, where each is whole and something is expected of it
+	Why     string            // nothing is expected: why
+	Today   expect.Expected   // of the last minute, or the fixed duty before the first
+	By      expect.Conditions // of the last minute
+	Mean                      // of the minutes, where each is whole and something is expected of it
 	Steady  steady.Told
 	Drift   Drift
 }
@@ -44,7 +45,7 @@ func (j *Judge) Grounds() Grounds { return j.grounds }
 
 // decide weighs the minutes that there are.
 func (j *Judge) decide() {
-	j.grounds = Grounds{Target: j.target, Minutes: len(j.Window), Lasting: j.lasting, Today: j.today(), Steady: j.Gate.Now, Drift: j.Drift.Drift()}
+	j.grounds = Grounds{Target: j.target, Minutes: len(j.Window), Lasting: j.lasting, Today: j.today(), By: j.Conditions, Steady: j.Gate.Now, Drift: j.Drift.Drift()}
 	j.grounds.Verdict, j.grounds.Ground = j.weigh(&j.grounds)
 }
 

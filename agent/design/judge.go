@@ -47,10 +47,12 @@ type Judge struct {
 	Block   int   // minutes of Window that are of the present block of the monitor
 	Rests   int64 // since when the load has rested; 0 where it has not
 	Witness Attest
-	Roll    // the warnings that stand
-	target  Target
-	lasting int
-	grounds Grounds
+	// Conditions are those of the last minute, by which its duty was expected.
+	Conditions expect.Conditions
+	Roll       // the warnings that stand
+	target     Target
+	lasting    int
+	grounds    Grounds
 }
 
 // NewJudge returns a judge of a load with the given target. A lasting of less

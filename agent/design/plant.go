@@ -38,7 +38,8 @@ func (j *Judge) expected(m *Minute, hour int) expect.Expected {
 	if j.target.Expect == nil {
 		return expect.Expected{Why: "the load has no design"}
 	}
-	return j.target.Expect.At(expect.Conditions{Hour: hour, Drivers: m.Drivers})
+	j.Conditions = expect.Conditions{Hour: hour, Drivers: m.Drivers}
+	return j.target.Expect.At(j.Conditions)
 }
 
 // Verdict is that of a load, given whether it is blind or idle at this instant.
