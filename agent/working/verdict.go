@@ -5,7 +5,6 @@ import (
 	"math"
 
 	"heatreeve/agent/design"
-	"heatreeve/agent/design/expect"
 	"heatreeve/agent/design/steady"
 )
 
@@ -34,32 +33,6 @@ func (p *page) verdict() {
 	}
 	p.drift()
 	p.say(p.because())
-}
-
-// expected writes what is expected of the last minute.
-func (p *page) expected() {
-	x := &p.Grounds.Today
-	p.begin("Expected duty")
-	defer p.end()
-	if !x.Known {
-		p.say("nothing is known of what is expected: " + x.Why)
-		return
-	}
-	words, source := "expected at the conditions of the last minute", ""
-	if _, ok := p.Grounds.Target.Expect.(expect.Fixed); ok {
-		words, source = "design duty", "site file"
-	}
-	p.at["expected"] = p.given("Qd", words, x.Duty/1e3, "kW", place(x.Duty/1e3, 10), source)
-	if x.Lasting > 0 {
-		p.given("ud", "its standard uncertainty, by what lasts", x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
-	}
-	if x.Random > 0 {
-		r := math.Sqrt(x.Random) / 1e3
-		p.given("rd", "and by what changes from minute to minute", r, "kW", place(r, coarse), "")
-	}
-	if x.Joint {
-		p.say("measured and expected duty rest on the same instruments: what their errors do to both is taken together")
-	}
 }
 
 // deviation writes how far the last minutes are from what was expected of them.
