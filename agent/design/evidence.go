@@ -69,6 +69,7 @@ func (j *Judge) ran() (run Seen, ok bool) {
 		run.Lasting += w * s.Lasting
 		run.At = run.At.plus(w, s.At)
 		run.Errors = run.Errors.plus(w, s.Errors)
+		run.Joint = run.Joint || s.Joint
 		run.Latent = run.Latent || s.Latent
 		if s.Doubt.Tag != "" {
 			run.Doubt = s.Doubt
@@ -127,7 +128,9 @@ func (j *Judge) compared(e *cause.Evidence, run Seen) {
 	if u > 0 {
 		share := func(x float64) float64 { return x * x / (u * u) }
 		for _, o := range []*cause.Operating{&e.Flow, &e.Inlet, &e.Outlet} {
-			e.Shares = append(e.Shares, cause.Share{Of: o.Tag, Share: share(o.Error.Duty * o.Uncertainty)})
+			if !run.Joint { // else what lasts of the instruments is not in the deviation by itself
+				e.Shares = append(e.Shares, cause.Share{Of: o.Tag, Share: share(o.Error.Duty * o.Uncertainty)})
+			}
 		}
 		e.Shares = append(e.Shares, cause.Share{Of: "the expectation", Expectation: true, Share: share(g.ExpectedLasting)})
 	}

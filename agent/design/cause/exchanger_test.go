@@ -3,6 +3,7 @@ package cause
 import (
 	"fmt"
 	"math"
+	"reflect"
 	"slices"
 	"testing"
 )
@@ -220,6 +221,47 @@ func TestCourseTellsFouling(t *testing.T) {
 		}
 		if got := slices.ContainsFunc(causes, func(c Cause) bool { return c.Kind == Fouling }); got != (tt.first == Fouling) {
 			t.Errorf("%s: fouling is told: %v", tt.name, got)
+		}
+	}
+}
+
+// Evidence of the two sides put together tells the same as that of six readings, and has the
+// tests and marks of both.
+func TestBeside(t *testing.T) {
+	s := states[0]
+	before := settled(s.hot, s.cold, s.T1, s.t1, clean(s.hot, s.cold))
+	whole := gathered(spoilt(before, 4, 1), &before)
+	of := func(x [6]float64) (s Effect, ok bool) {
+		s.Closure, s.Conductance, s.Duty = figures(x)
+		return s, true
+	}
+	hot := Evidence{Subject: whole.Subject, Flow: whole.Flow, Inlet: whole.Inlet, Outlet: whole.Outlet}
+	cold := Evidence{
+		Flow: whole.OtherFlow, Inlet: whole.OtherInlet, Outlet: whole.OtherOutlet,
+		Marks: []Mark{{Tag: "tag 3", Reason: "stuck"}},
+	}
+	got, want := Rank(hot.Beside(cold, whole.Exchanger, of)), Rank(whole)
+	if len(got) != len(want)+1 || !reflect.DeepEqual(got[:len(want)], want) || got[len(want)].Says != "the flow meter of the other side: stuck" {
+		t.Errorf("%+v\nwant %+v and a stuck flow meter", got, want)
+	}
+	cold.Steadiness = Steadiness{Known: true, Worst: "flow"}
+	if causes := Rank(hot.Beside(cold, whole.Exchanger, of)); causes[0].Kind != Unsteady {
+		t.Errorf("the other side is not steady: %+v", causes)
+	}
+}
+
+// What a rank costs: it is made each minute while a warning stands.
+func BenchmarkRank(b *testing.B) {
+	s := states[0]
+	before := settled(s.hot, s.cold, s.T1, s.t1, clean(s.hot, s.cold))
+	e := gathered(spoilt(before, 0, 1), &before)
+	for day := range 60 {
+		e.Exchanger.Days = append(e.Exchanger.Days, Day{Day: int64(day), Conductance: Estimate{true, 0.001 * float64(day%3), 0.01}, Closure: Estimate{true, float64(day % 5), 10}})
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		if len(Rank(e)) == 0 {
+			b.Fatal("no cause")
 		}
 	}
 }
