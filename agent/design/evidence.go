@@ -99,7 +99,7 @@ func (j *Judge) operating(e *cause.Evidence, run Seen) {
 	if design.Flow > 0 && design.Inlet > 0 && design.Outlet > 0 {
 		perK, perFlow = c*(at.Flow+design.Flow)/2, c*(rise+design.Inlet-design.Outlet)/2
 	}
-	follows := j.target.ByExchanger
+	follows := j.target.ByExchanger && !run.Idle // nothing is expected of a load at rest
 	put := func(o *cause.Operating, tag string, value, design, u, change, wrong float64) {
 		*o = cause.Operating{
 			Known: true, Tag: tag, Value: value, Design: design, Uncertainty: u, Follows: follows,

@@ -59,6 +59,17 @@ func TestEvidenceOfAJudge(t *testing.T) {
 	}
 }
 
+// A load at rest runs away from its design also where its exchanger tells what to expect.
+func TestRestOfAnExchanger(t *testing.T) {
+	of := circuit
+	of.Expect, of.ByExchanger = nil, true
+	j := NewJudge(of)
+	observe(j, runs(0, Point{0, 353.15, 333.15}, 1))
+	if causes := cause.Rank(j.Evidence()); len(causes) != 1 || causes[0].Kind != cause.FlowAway || causes[0].Weight < 0.99 {
+		t.Errorf("%+v", causes)
+	}
+}
+
 // By the slopes half way, flow, inlet and outlet together explain the whole of a deviation,
 // however great: m·ΔT − m₀·ΔT₀ = (ΔT + ΔT₀)/2·Δm + (m + m₀)/2·Δ(ΔT).
 func TestSharesAddUp(t *testing.T) {

@@ -62,14 +62,16 @@ func weight(d Day) float64 { return 1 / (d.Conductance.Uncertainty * d.Conductan
 
 // againstCourse is what the course of the days adds to what a fault leaves over: fouling
 // grows, an instrument steps and seldom drifts.
-func againstCourse(f fault, days []Day) float64 {
+func againstCourse(days []Day) func(fault) float64 {
 	step, ramp, ok := course(days)
 	if !ok {
-		return 0
+		return func(fault) float64 { return 0 }
 	}
 	least := min(step, ramp)
-	if f.isDesign {
-		return ramp - least
+	return func(f fault) float64 {
+		if f.isDesign {
+			return ramp - least
+		}
+		return min(step, ramp+2*math.Log(rareDrift)) - least
 	}
-	return min(step, ramp+2*math.Log(rareDrift)) - least
 }

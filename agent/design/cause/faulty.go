@@ -44,14 +44,14 @@ func (e *Evidence) faulty(iso *isolation, faults []fault) (causes []Cause, misre
 // fits lists the faults that explain something, with their likelihood beside the likeliest.
 func (e *Evidence) fits(iso *isolation, faults []fault) []found {
 	var all []found
-	best := math.Inf(1)
+	best, against := math.Inf(1), againstCourse(e.Exchanger.Days)
 	for _, f := range faults {
 		x, ok := iso.fit(f)
 		if !ok {
 			continue
 		}
 		if !e.Exchanger.IllConditioned {
-			x.left += againstCourse(f, e.Exchanger.Days)
+			x.left += against(f)
 		}
 		best = min(best, x.left)
 		all = append(all, x)
