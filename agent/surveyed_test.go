@@ -23,12 +23,13 @@ import (
 var knows = []struct{ line, key, value string }{
 	{"site:", "site", "Brackwater Creamery"},
 	{"timezone:", "timezone", "Europe/Dublin"},
-	{"  FT-401:", "unit", "Nm3/h"}, {"  FT-301:", "unit", "m3/h"}, {"  FT-201:", "unit", "m3/h"},
+	{"  FT-401:", "unit", "Nm3/h"}, {"  FT-301:", "unit", "m3/h"}, {"  FT-2", "unit", "m3/h"},
 	{"  PT-", "unit", "barg"},
 	{"  TT-4", "accuracy", "IEC 60751 B"}, {"  TT-", "accuracy", "IEC 60751 A"},
 	{"  FT-", "accuracy", "0.5 % of reading"}, {"  PT-", "accuracy", "0.25 % of 16 bar"},
 	{"  hw:", "fluid", "water"}, {"  hw:", "meter_at", "inlet"},
 	{"  chw:", "fluid", "glycol"}, {"  chw:", "meter_at", "inlet"},
+	{"  milk:", "fluid", "whole milk"}, {"  milk:", "pressure", "4 barg"}, {"  milk:", "meter_at", "inlet"},
 	{"  air:", "fluid", "dry air"}, {"  air:", "pressure", "4 kPag"}, {"  air:", "meter_at", ""},
 }
 
@@ -109,7 +110,7 @@ func TestSurveyOfTheDemoGivesItsDuties(t *testing.T) {
 		t.Fatalf("%v\n%s", err, draft.String())
 	}
 	got, want := duties(t, drafted, heard), duties(t, d.Site, heard)
-	for own, name := range map[string]string{"hot-water": "hw", "chilled-glycol": "chw", "dryer-air": "air"} {
+	for own, name := range map[string]string{"hot-water": "hw", "chilled-glycol": "chw", "dryer-air": "air", "milk": "milk"} {
 		if want[own] == 0 || !(math.Abs(got[name]/want[own]-1) <= 1e-3) {
 			t.Errorf("%s: %g W by the draft, %g W by the demo's file", own, got[name], want[own])
 		}

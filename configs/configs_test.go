@@ -69,7 +69,7 @@ func TestDemo(t *testing.T) {
 	for _, l := range s.Loads {
 		loads = append(loads, l.Name+" of "+l.Stream.FluidName)
 	}
-	if want := []string{"hot-water of water", "chilled-glycol of glycol", "dryer-air of dry air"}; !slices.Equal(loads, want) {
+	if want := []string{"hot-water of water", "chilled-glycol of glycol", "dryer-air of dry air", "milk of whole milk"}; !slices.Equal(loads, want) {
 		t.Errorf("the demo's loads are %q, want %q", loads, want)
 	}
 }

@@ -12,16 +12,15 @@ import (
 )
 
 // habit is how one load of the plant spends its day. Shares are of its design
-// duty.
+// duty; of the two that meet in the exchanger, of its design flow.
 type habit struct {
 	load   string
-	night  float64       // share of the design duty at night
+	night  float64       // share at night
 	swings float64       // amplitude by day, share of the allowance
 	period time.Duration // of the swings
 	// follows is how the temperature difference follows the duty: 1 where the
 	// flow stays as it is, 0 where the flow does all.
 	follows float64
-	fouls   bool
 	stops   bool // its pump is off for a while
 	garbles bool // its outlet transmitter sends garbage for a while
 	silent  bool // its outlet transmitter falls silent for a while
@@ -29,9 +28,10 @@ type habit struct {
 
 // habits are the loads of the invented plant, by their names in the site file.
 var habits = []habit{
-	{load: "hot-water", night: 0.45, swings: 0.12, period: 48 * time.Minute, follows: 0.9, fouls: true},
+	{load: hotLoad, night: 0.4},
 	{load: "chilled-glycol", night: 0.97, swings: 0.3, period: 36 * time.Minute, follows: 0.5, stops: true, garbles: true},
 	{load: "dryer-air", night: 0.6, swings: 0.25, period: 60 * time.Minute, follows: 0.2, silent: true},
+	{load: coldLoad, night: 0.4, swings: 0.12, period: 48 * time.Minute},
 }
 
 // circuit is a load of the site with its habit.
@@ -114,13 +114,13 @@ func (c *circuit) designed() error {
 	return err
 }
 
-// share is the duty at the time of day t as a share of the design duty.
+// share is the duty at the time of day t as a share of the design duty, or the flow
+// likewise.
 func (c *circuit) share(t time.Duration) float64 {
 	p := production(t)
 	s := c.night + (1-c.night)*p
-	s *= 1 + p*c.swings*c.Design.Allow*swing(t, c.period)
-	if c.fouls {
-		s *= 1 - c.Design.Allow*fouling(t)
+	if c.swings > 0 {
+		s *= 1 + p*c.swings*c.Design.Allow*swing(t, c.period)
 	}
 	return s
 }
@@ -128,16 +128,26 @@ func (c *circuit) share(t time.Duration) float64 {
 // stopped tells whether nothing flows at the time of day t.
 func (c *circuit) stopped(t time.Duration) bool { return c.stops && within(t, stopBegins, stopEnds) }
 
-// at is the circuit at the time of day t. The flow follows from
+// at is the circuit at the time of day t, where its duty is chosen and its temperatures
+// with it. The error is the fluid's *thermo.RangeError.
+func (c *circuit) at(t time.Duration) (state, error) {
+	share := c.share(t)
+	T1 := c.Design.Inlet
+	T2 := T1 + (c.Design.Outlet-T1)*math.Pow(share, c.follows)
+	duty := share * c.Design.Duty
+	if c.stopped(t) {
+		duty = 0
+	}
+	return c.state(duty, T1, T2)
+}
+
+// state is the circuit that moves a duty between two temperatures. The flow follows from
 //
 //	m = Q / |h(outlet) − h(inlet)|
 //
 // and is turned into what the meter counts with the fluid's density in the
 // meter's pipe, or its molar mass. The error is the fluid's *thermo.RangeError.
-func (c *circuit) at(t time.Duration) (state, error) {
-	share := c.share(t)
-	T1 := c.Design.Inlet
-	T2 := T1 + (c.Design.Outlet-T1)*math.Pow(share, c.follows)
+func (c *circuit) state(duty, T1, T2 float64) (state, error) {
 	p1, p2, err := c.pressures()
 	if err != nil {
 		return state{}, err
@@ -149,10 +159,6 @@ func (c *circuit) at(t time.Duration) (state, error) {
 	out, err := c.Stream.Fluid.At(T2, p2)
 	if err != nil {
 		return state{}, fmt.Errorf("outlet: %w", err)
-	}
-	duty := share * c.Design.Duty
-	if c.stopped(t) {
-		duty = 0
 	}
 	flow := c.metered(duty/math.Abs(out.Enthalpy-in.Enthalpy), in, out)
 	return state{duty, [...]float64{partFlow: flow, partInlet: T1, partOutlet: T2, partPressure: p1, partOutletPressure: p2}}, nil

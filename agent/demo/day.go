@@ -14,7 +14,7 @@ const (
 	rampEnds      = time.Hour                     // 06:30
 	eveningBegins = 16*time.Hour + 30*time.Minute // 22:00: production ends
 	eveningEnds   = 17 * time.Hour
-	cleanBegins   = 20 * time.Hour // 01:30: the hot-water exchanger is cleaned
+	cleanBegins   = 20 * time.Hour // 01:30: the exchanger of hot water and milk is cleaned
 	cleanEnds     = 20*time.Hour + 30*time.Minute
 
 	garbleBegins = time.Hour + 45*time.Minute // 07:15: a transmitter sends garbage
@@ -24,8 +24,8 @@ const (
 	stopBegins   = 4*time.Hour + 30*time.Minute // 10:00: the chilled circuit's pump is off
 	stopEnds     = stopBegins + 10*time.Minute
 
-	// foulingHalf is when the fouled exchanger has lost exactly its allowance:
-	// half of what it loses in the end.
+	// foulingHalf is when the film on the plates costs exactly the allowance of the
+	// hot-water load: it is half of what it comes to in the end.
 	foulingHalf = 7*time.Hour + 45*time.Minute // 13:15
 	foulingPace = 70 * time.Minute
 )
@@ -43,9 +43,9 @@ func production(t time.Duration) float64 {
 	return rise(t, rampBegins, rampEnds) - rise(t, eveningBegins, eveningEnds)
 }
 
-// fouling is the part of its allowance that the hot-water exchanger has lost: a
-// film that begins slowly, grows, and levels off at twice the allowance, until
-// it is cleaned away.
+// fouling is the film on the plates, as a multiple of the one that costs the hot-water
+// load its allowance: it begins slowly, grows, and levels off at twice that, until it is
+// cleaned away.
 func fouling(t time.Duration) float64 {
 	film := 2 / (1 + math.Exp(-float64(t-foulingHalf)/float64(foulingPace)))
 	return film * (1 - rise(t, cleanBegins, cleanEnds))

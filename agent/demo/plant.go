@@ -2,6 +2,7 @@ package demo
 
 import (
 	"fmt"
+	"slices"
 	"time"
 
 	"heatreeve/agent/site"
@@ -29,6 +30,7 @@ type Sample struct {
 type Plant struct {
 	site     *site.Site
 	circuits []circuit
+	exchange *exchange
 	signals  []signal // one a tag, in their order
 }
 
@@ -40,7 +42,14 @@ func NewPlant(s *site.Site, seed uint64) (*Plant, error) {
 		return nil, err
 	}
 	p := &Plant{site: s, circuits: circuits}
-	if p.signals, err = wire(s, circuits, seed); err != nil {
+	if p.exchange, err = newExchange(circuits); err != nil {
+		return nil, fmt.Errorf("site %q: %w", s.Name, err)
+	}
+	typical, err := p.states(rampEnds)
+	if err != nil {
+		return nil, err
+	}
+	if p.signals, err = wire(s, circuits, typical, seed); err != nil {
 		return nil, err
 	}
 	if err := checkPayload(s.Tags); err != nil {
@@ -60,12 +69,9 @@ func NewPlant(s *site.Site, seed uint64) (*Plant, error) {
 // fluid which has no properties at a state of the day.
 func (p *Plant) At(elapsed time.Duration) ([]Sample, error) {
 	t := elapsed % dayLength
-	states := make([]state, len(p.circuits))
-	for i := range p.circuits {
-		var err error
-		if states[i], err = p.circuits[i].at(t); err != nil {
-			return nil, fmt.Errorf("load %q: %w", p.circuits[i].Name, err)
-		}
+	states, err := p.states(t)
+	if err != nil {
+		return nil, err
 	}
 	samples := make([]Sample, len(p.signals))
 	for i, s := range p.signals {
@@ -78,13 +84,33 @@ func (p *Plant) At(elapsed time.Duration) ([]Sample, error) {
 	return samples, nil
 }
 
+// states are those of the circuits at the time of day t.
+func (p *Plant) states(t time.Duration) ([]state, error) {
+	states := make([]state, len(p.circuits))
+	met, err := p.exchange.at(p.circuits, t)
+	if err != nil {
+		return nil, err
+	}
+	for i := range p.circuits {
+		if side := slices.Index(p.exchange.sides[:], i); side >= 0 {
+			states[i] = met[side]
+		} else if states[i], err = p.circuits[i].at(t); err != nil {
+			return nil, fmt.Errorf("load %q: %w", p.circuits[i].Name, err)
+		}
+	}
+	return states, nil
+}
+
 // Duty is what the load truly moves when elapsed time has passed, in W, positive
 // in its service.
 func (p *Plant) Duty(load string, elapsed time.Duration) (float64, error) {
 	for i := range p.circuits {
-		if c := &p.circuits[i]; c.Name == load {
-			x, err := c.at(elapsed % dayLength)
-			return x.duty, err
+		if p.circuits[i].Name == load {
+			states, err := p.states(elapsed % dayLength)
+			if err != nil {
+				return 0, err
+			}
+			return states[i].duty, nil
 		}
 	}
 	return 0, fmt.Errorf("the invented plant has no load %q; it has %s", load, knownLoads())

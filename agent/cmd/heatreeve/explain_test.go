@@ -320,7 +320,7 @@ func TestExplainRefuses(t *testing.T) {
 		{[]string{"--data", p.data}, exitWrong, "the load is missing"},
 		{[]string{"hot-water"}, exitWrong, "--data must be given"},
 		{[]string{"hot-watr", "--data", p.data}, exitWrong, `load "hot-watr" is not in the site file of then; did you mean "hot-water"?`},
-		{[]string{"steam", "--data", p.data}, exitWrong, `there are: hot-water, chilled-glycol, dryer-air`},
+		{[]string{"steam", "--data", p.data}, exitWrong, `there are: hot-water, chilled-glycol, dryer-air, milk`},
 		{[]string{"hot-water", "--data", p.data, "--at", "noon"}, exitWrong, `--at "noon" is no date`},
 		{[]string{"hot-water", "--data", p.data, "--at", "2027-01-01"}, exitWrong, "--at 2027-01-01: the history goes up to 2026-12-01 10:15:00 +00:00"},
 		{[]string{"hot-water", "--data", p.data, "--at", "2026-11-01"}, exitFailed, `no record of load "hot-water" at 2026-11-01 00:00:00 +00:00, nor readings of its tags before`},

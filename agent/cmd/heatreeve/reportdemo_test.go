@@ -75,7 +75,7 @@ func TestReportWhileTheDemoRuns(t *testing.T) {
 	}
 }
 
-// awaitReport asks until the report has an hour of all three loads that is over.
+// awaitReport asks until the report has an hour of all four loads that is over.
 func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
 	t.Helper()
 	ticker, deadline := time.NewTicker(100*time.Millisecond), time.After(60*time.Second)
@@ -90,7 +90,7 @@ func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
 		case <-ticker.C:
 			status, text, _ := report(t, args...)
 			var r agent.Report
-			if status != exitGood || json.Unmarshal([]byte(text), &r) != nil || len(r.Loads) != 3 {
+			if status != exitGood || json.Unmarshal([]byte(text), &r) != nil || len(r.Loads) != 4 {
 				continue
 			}
 			if !slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return l.Periods[0].AccountedTo.Before(l.Periods[0].End) }) {
