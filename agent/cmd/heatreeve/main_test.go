@@ -48,7 +48,7 @@ func TestExitStatusAndMessages(t *testing.T) {
 		{"listen", exitWrong, "", `unknown command "listen"; known: run`},
 		{"prop", exitWrong, "", `unknown command "prop"; near: properties; known: run`},
 		{"check", exitWrong, "", "the site file is missing"},
-		{"check " + example, exitGood, `good: "Brackwater Creamery", tags: 11, loads: 3`, ""},
+		{"check " + example, exitGood, `good: "Brackwater Creamery", tags: 14, loads: 4`, ""},
 		{"check ../../../configs/tarnholt-heat-works.yaml", exitGood, "note: broker.ca: ", ""},
 		{"check ../../../configs/orrin-sound-works.yaml", exitGood, `good: "Orrin Sound Works", tags: 50, loads: 16`, ""},
 		{"check " + wrong, exitWrong, "", `wrong.yaml:2:`},

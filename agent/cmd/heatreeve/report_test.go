@@ -154,8 +154,8 @@ func TestReportCSVAgainstJSON(t *testing.T) {
 	if err := json.Unmarshal([]byte(asJSON), &r); err != nil {
 		t.Fatal(err)
 	}
-	if len(records) != 1+3*80 || len(r.Loads) != 3 {
-		t.Fatalf("%d lines, %d loads; want a header and 80 hours of 3 loads", len(records), len(r.Loads))
+	if len(records) != 1+4*80 || len(r.Loads) != 4 {
+		t.Fatalf("%d lines, %d loads; want a header and 80 hours of 4 loads", len(records), len(r.Loads))
 	}
 	column := func(name string) int {
 		i := slices.Index(records[0], name)
