@@ -21,6 +21,10 @@ const (
 	Accepts = 1.5
 )
 
+// stuck is how many values that do not differ at all are no information any more: by then
+// the filters have forgotten seven eighths of what was before. Common practice, no source.
+const stuck = 20
+
 // Filter is the R-statistic of one signal: the ratio of its variance about a moving mean to
 // that by successive differences, near 1 where it is steady with white noise, and greater
 // where it moves. Its fields are its state.
@@ -29,6 +33,7 @@ type Filter struct {
 	Mean, Last     float64
 	About, Between float64
 	Moves          bool
+	Same           int // last values that were equal to the one before
 }
 
 // Observe takes in the next value:
@@ -43,10 +48,14 @@ func (f *Filter) Observe(x float64) {
 	}
 	f.About += byVariance * ((x-f.Mean)*(x-f.Mean) - f.About)
 	f.Mean += byMean * (x - f.Mean)
+	if f.Same++; x != f.Last {
+		f.Same = 0
+	}
 	f.Between += byDifference * ((x-f.Last)*(x-f.Last) - f.Between)
 	f.Last = x
 	switch r, known := f.R(); {
 	case !known:
+		f.Moves = false
 	case r > Rejects:
 		f.Moves = true
 	case r < Accepts:
@@ -54,10 +63,11 @@ func (f *Filter) Observe(x float64) {
 	}
 }
 
-// R is the statistic; it is not known where the signal does not move at all, as one that is
-// stuck, which is no information and not steadiness.
+// R is the statistic; it is not known where the signal has not moved at all through the last 20
+// values, as one that is stuck. That is no information: neither steadiness nor its contrary.
+// Both variances then fade alike and tell of nothing but what was before.
 func (f *Filter) R() (r float64, known bool) {
-	if !(f.Between > 0) {
+	if !(f.Between > 0) || f.Same >= stuck {
 		return 0, false
 	}
 	return (2 - byMean) * f.About / f.Between, true

@@ -39,8 +39,17 @@ type Sample struct {
 }
 
 // Observe takes in the next minute of the variables, always the same ones in the same order,
-// over a window of the given number of minutes.
+// over a window of the given number of minutes, at least one. A sample that is not finite tells
+// nothing: the gate is then not steady, names it, and begins anew.
 func (g *Gate) Observe(window int, limit float64, samples ...Sample) {
+	window = max(1, window)
+	for _, s := range samples {
+		if x := s.Value * s.By; math.IsNaN(x) || math.IsInf(x, 0) {
+			g.Reset()
+			g.Now = Told{Worst: s.Name, Limit: limit}
+			return
+		}
+	}
 	if len(g.Variables) != len(samples) {
 		g.Variables = make([]Variable, len(samples))
 	}

@@ -59,6 +59,46 @@ func TestStuckTellsNothing(t *testing.T) {
 	}
 }
 
+// What a signal did before it got stuck is not told for ever.
+func TestStuckAfterARampTellsNothing(t *testing.T) {
+	r := rand.New(rand.NewPCG(4, 4))
+	var f Filter
+	for i := range 60 {
+		f.Observe(10 + 0.5*float64(i) + 0.1*r.NormFloat64())
+	}
+	if x, known := f.R(); !known || !f.Moves {
+		t.Errorf("a ramp: R = %v, known %v, moves %v", x, known, f.Moves)
+	}
+	for range 1 + stuck {
+		f.Observe(40)
+	}
+	if x, known := f.R(); known || f.Moves {
+		t.Errorf("stuck: R = %v, known %v, moves %v; want neither", x, known, f.Moves)
+	}
+	for range 60 {
+		f.Observe(40 + 0.1*r.NormFloat64())
+	}
+	if x, known := f.R(); !known || x > Rejects {
+		t.Errorf("moving again: R = %v, known %v", x, known)
+	}
+}
+
+// A minute that is no number is not steady, and is forgotten.
+func TestGateBeginsAnewAfterNoNumber(t *testing.T) {
+	for _, bad := range []Sample{{"flow", math.NaN(), 100}, {"flow", 10, math.Inf(1)}} {
+		var g Gate
+		observe(&g, 5, slices.Repeat([]float64{10, 10.001}, 10)...)
+		g.Observe(10, 5, bad, Sample{"inlet", 50, 7})
+		if g.Now.Steady || g.Now.Worst != "flow" {
+			t.Errorf("%v: %+v, want flow not steady", bad, g.Now)
+		}
+		observe(&g, 5, slices.Repeat([]float64{10, 10.001}, 10)...)
+		if x, known := g.Variables[0].Filter.R(); !g.Now.Steady || !known || math.IsNaN(x) {
+			t.Errorf("%v: afterwards %+v, R = %v", bad, g.Now, x)
+		}
+	}
+}
+
 // y at unit steps: b = 0.045455, s_b = 0.0090909, t = 5 against 2.306.
 func TestSlope(t *testing.T) {
 	l := Fit([]float64{20.1, 20.0, 20.2, 20.1, 20.3, 20.2, 20.4, 20.3, 20.5, 20.4})
