@@ -28,12 +28,13 @@ func (c *CUSUM) Observe(at int64, x, k float64) {
 	c.HighN, c.LowN = c.HighN+1, c.LowN+1
 }
 
-// Size is the shift since a sum left 0, estimated as k + S/N, of the side 1 or −1; signed.
+// Size is the shift since a sum left 0, estimated as k + S/N, of the side 1 or −1; signed, and 0
+// of a sum that is 0.
 func (c *CUSUM) Size(side int, k float64) float64 {
 	switch {
-	case side > 0 && c.HighN > 0:
+	case side > 0 && c.High > 0:
 		return k + c.High/float64(c.HighN)
-	case side < 0 && c.LowN > 0:
+	case side < 0 && c.Low > 0:
 		return -k - c.Low/float64(c.LowN)
 	}
 	return 0
