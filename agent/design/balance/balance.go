@@ -21,6 +21,10 @@ type Linear struct {
 	Gamma float64       // global test: rᵀH⁻¹r, chi-square with as many degrees of freedom as constraints
 	Z     []float64     // measurement test: adjustments in their standard deviations; 0 of what nothing can adjust
 	Nodal []float64     // residuals in their standard deviations
+	// Suspect is the measurement with the greatest Z, and Tells whether no other has the same:
+	// only then do the balances tell whose measurement would be at fault.
+	Suspect int
+	Tells   bool
 }
 
 // Reconcile adjusts the measurements y of covariance V to A·x = b, A with fewer independent
@@ -29,7 +33,7 @@ type Linear struct {
 //	x = y − V·Aᵀ·H⁻¹·r,  r = A·y − b,  H = A·V·Aᵀ
 //
 // With a single constraint all Z are equal: that the balance fails can be seen, and not whose
-// measurement is at fault.
+// measurement is at fault. That takes another reading of the same, or history.
 func Reconcile(y []float64, v mat.Symmetric, a mat.Matrix, b []float64) (Linear, error) {
 	rows, n := a.Dims()
 	if len(y) != n || v.SymmetricDim() != n || len(b) != rows {
@@ -65,7 +69,25 @@ func Reconcile(y []float64, v mat.Symmetric, a mat.Matrix, b []float64) (Linear,
 		out.Gamma += r.At(i, 0) * left.At(i, 0)
 		out.Nodal = append(out.Nodal, math.Abs(r.At(i, 0))/math.Sqrt(h.At(i, i)))
 	}
+	out.Suspect, out.Tells = suspect(out.Z)
 	return out, nil
+}
+
+// suspect is the place of the greatest z, and whether the next one is less by more than
+// rounding.
+func suspect(z []float64) (at int, tells bool) {
+	next := 0.0
+	for i := range z {
+		if z[i] > z[at] {
+			at = i
+		}
+	}
+	for i := range z {
+		if i != at {
+			next = max(next, z[i])
+		}
+	}
+	return at, next < z[at]*(1-1e-6)
 }
 
 // ChiSquare is the limit of the global test: that which chance alone exceeds in a part alpha
@@ -91,9 +113,17 @@ type Duties struct {
 }
 
 // Close reconciles what a hot stream gives, uHot uncertain, with what a cold one takes: each
-// gives way by its part of the variance.
+// gives way by its part of the variance. Where neither is uncertain both stay as measured, and
+// Gamma is infinite unless they close.
 func Close(hot, uHot, cold, uCold, loss float64) Duties {
 	d := Duties{Closure: hot - cold - loss, ClosureError: math.Hypot(uHot, uCold)}
+	if d.ClosureError == 0 {
+		d.Hot, d.Cold = hot, cold
+		if d.Closure != 0 {
+			d.Gamma = math.Inf(1)
+		}
+		return d
+	}
 	w := uHot * uHot / (d.ClosureError * d.ClosureError)
 	d.Hot, d.Cold = hot-w*d.Closure, cold+(1-w)*d.Closure
 	d.Uncertainty = uHot * uCold / d.ClosureError
@@ -119,8 +149,9 @@ type Pair struct {
 	Rounds      int
 }
 
-// ErrGross says that what is reconciled cannot be: a flow below zero, or a stream that goes the
-// wrong way.
+// ErrGross says that what is reconciled cannot be: a flow below zero, a stream that goes the wrong
+// way, or temperatures that cross: a cold outlet above the hot inlet, or a hot outlet below the
+// cold inlet, which no arrangement of flows allows.
 var ErrGross = errors.New("the reconciled figures cannot be, which tells of a gross error")
 
 // mostRounds bounds the linearisations; three to five are enough for readings that fit.
@@ -174,8 +205,8 @@ func Reconciled(hot, cold Stream, loss float64) (Pair, error) {
 	p.Cold.Flow, p.Cold.Inlet, p.Cold.Outlet = x[3], x[4], x[5]
 	p.Duty = x[0] * hot.Cp * (x[1] - x[2])
 	p.Uncertainty = dutyError(&jac, &u, h)
-	if !(x[0] > 0) || !(x[3] > 0) || !(x[1] > x[2]) || !(x[5] > x[4]) {
-		return p, ErrGross
+	if !(x[0] > 0) || !(x[3] > 0) || !(x[1] > x[2]) || !(x[5] > x[4]) || x[5] > x[1] || x[4] > x[2] {
+		return p, fmt.Errorf("hot %g kg/s from %g to %g K, cold %g kg/s from %g to %g K: %w", x[0], x[1], x[2], x[3], x[4], x[5], ErrGross)
 	}
 	return p, nil
 }

@@ -66,8 +66,27 @@ func TestNarasimhanAndJordache(t *testing.T) {
 			t.Errorf("flow %d is blamed more than the one at fault: %v", i+1, l.Z)
 		}
 	}
+	if l.Suspect != 1 || !l.Tells {
+		t.Errorf("suspect %d, tells %v; want 1 and true", l.Suspect, l.Tells)
+	}
 	if l.Z[1] < Sidak(6, 0.05) {
 		t.Errorf("the flow at fault passes: %v", l.Z[1])
+	}
+}
+
+// With one constraint all are as suspect.
+func TestOneBalanceBlamesNobody(t *testing.T) {
+	v := mat.NewSymDense(3, []float64{4, 0, 0, 0, 1, 0, 0, 0, 9})
+	l, err := Reconcile([]float64{100, 60, 55}, v, mat.NewDense(1, 3, []float64{1, -1, -1}), []float64{0})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if l.Tells {
+		t.Errorf("tells that %d is at fault by %v", l.Suspect, l.Z)
+	}
+	for _, z := range l.Z {
+		near(t, "measurement test", z, l.Nodal[0], 1e-9)
+		near(t, "its square", z*z, l.Gamma, 1e-9)
 	}
 }
 
@@ -89,6 +108,12 @@ func TestTwoDuties(t *testing.T) {
 	near(t, "hot", d.Hot, 201, 1e-9)
 	near(t, "cold", d.Cold, 196, 1e-9)
 	near(t, "gamma", d.Gamma, 0.556, 5e-4)
+	if d = Close(205, 0, 195, 0, 0); d.Hot != 205 || d.Cold != 195 || !math.IsInf(d.Gamma, 1) {
+		t.Errorf("two exact duties that differ: %+v", d)
+	}
+	if d = Close(200, 0, 195, 0, 5); d.Hot != 200 || d.Gamma != 0 {
+		t.Errorf("two exact duties that close: %+v", d)
+	}
 }
 
 var hot = Stream{Flow: 2.05, Inlet: 90, Outlet: 60.3, FlowError: 0.04, InletError: 0.2, OutletError: 0.2, Cp: 4.18}
@@ -149,6 +174,15 @@ func TestGrossErrors(t *testing.T) {
 	backwards.FlowError = 0
 	if _, err := Reconciled(hot, backwards, 0); !errors.Is(err, ErrGross) {
 		t.Errorf("a cold side that cools: %v", err)
+	}
+	crossed := cold // 35 to 91 in a stream that is heated from 90
+	crossed.Flow, crossed.Inlet, crossed.Outlet = 1.1, 35, 91
+	if _, err := Reconciled(hot, crossed, 0); !errors.Is(err, ErrGross) {
+		t.Errorf("a cold outlet above the hot inlet: %v", err)
+	}
+	crossed.Flow, crossed.Inlet, crossed.Outlet = 5.6, 70, 80.9
+	if _, err := Reconciled(hot, crossed, 0); !errors.Is(err, ErrGross) {
+		t.Errorf("a hot outlet below the cold inlet: %v", err)
 	}
 	none := Stream{Flow: 1, Inlet: 2, Outlet: 1, Cp: 1}
 	if _, err := Reconciled(none, none, 0); err == nil {
