@@ -11,6 +11,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 
 	"heatreeve/agent"
+	"heatreeve/agent/design/cause"
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/site"
 	"heatreeve/configs"
@@ -259,4 +260,16 @@ func TestReadmeFluidsAreGood(t *testing.T) {
 func good(fluid string) bool {
 	_, err := site.ParseFluid(fluid)
 	return err == nil
+}
+
+// The causes that the README tells are those that there are.
+func TestReadmeCauses(t *testing.T) {
+	var have []string
+	for _, k := range cause.Kinds() {
+		have = append(have, string(k))
+	}
+	text := strings.Join(strings.Fields(readme(t)), " ")
+	if want := "There are: " + strings.Join(have, " · ") + ". "; !strings.Contains(text, want) {
+		t.Errorf("the README does not say %q", want)
+	}
 }
