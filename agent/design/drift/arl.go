@@ -64,7 +64,7 @@ func below(x float64) float64 { return math.Erfc(-x/math.Sqrt2) / 2 }
 
 // Threshold is the h with which a two-sided CUSUM of slack k gives a false signal once in arl
 // values on the mean, 2 to 1e8, within one part in a million; NaN where that takes h beyond 160, as
-// it may for k below 0.08.
+// it may for k below 0.045.
 func Threshold(k, arl float64) float64 {
 	arl = min(1e8, max(2, arl))
 	low, high := 1e-3, 1.0

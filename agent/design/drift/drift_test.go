@@ -129,7 +129,7 @@ func TestFalseSignalsOfAKnownScatter(t *testing.T) {
 
 // With the scatter estimated there are not more false signals than chosen, by more than three
 // standard deviations of their number; and fewer: a correlation below 0 counts as none, so
-// that independent values scatter by a percent or two less than is told, and the inflation is
+// that independent values are told to scatter by 1.9 % more than they do, and the inflation is
 // that of long sums. The lower bounds are what was seen here, as a guard.
 func TestFalseSignals(t *testing.T) {
 	r := rand.New(rand.NewPCG(3, 4))
