@@ -20,6 +20,11 @@ func (a *Attest) observe(m *Minute) {
 	a.Served += m.Served - a.Served*fading
 }
 
+// idleError is the standard uncertainty of the flow of a load that rests, as a part of its
+// design flow: what is called idle lies below a tenth of that, evenly. Common practice, no
+// source.
+const idleError = 0.1 / 1.7320508
+
 // Evidence is what is known of the load over its last minutes, for [cause.Rank].
 func (j *Judge) Evidence() cause.Evidence {
 	g := &j.grounds
@@ -109,7 +114,11 @@ func (j *Judge) operating(e *cause.Evidence, run Seen) {
 			o.ByChange = change
 		}
 	}
-	put(&e.Flow, tags.Flow, at.Flow, design.Flow, run.Errors.Flow, perFlow, c*rise)
+	flowError := run.Errors.Flow
+	if run.Idle && flowError == 0 {
+		flowError = idleError * design.Flow
+	}
+	put(&e.Flow, tags.Flow, at.Flow, design.Flow, flowError, perFlow, c*rise)
 	if !run.Idle { // else the thermometers tell nothing
 		put(&e.Inlet, tags.Inlet, at.Inlet, design.Inlet, run.Errors.Inlet, perK, c*at.Flow)
 		put(&e.Outlet, tags.Outlet, at.Outlet, design.Outlet, run.Errors.Outlet, -perK, -c*at.Flow)

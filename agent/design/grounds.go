@@ -34,6 +34,7 @@ type Grounds struct {
 	By      expect.Conditions // of the last minute
 	Mean                      // of the minutes, where each is whole and something is expected of it
 	Steady  steady.Told
+	Moving  int // minutes by which the load was not steady
 	Drift   Drift
 }
 
@@ -78,10 +79,10 @@ func (j *Judge) weigh(g *Grounds) (Verdict, Ground) {
 			return Undecided, NotExpected
 		}
 	}
-	g.Mean = mean(j.Window, j.target.Allow)
+	g.Mean, g.Moving = mean(j.Window, j.target.Allow), moving(j.Window)
 	n, U, a := len(j.Window), 2*g.Uncertainty(), g.Allowance()
 	switch {
-	case !g.Steady.Steady:
+	case !g.Steady.Steady, g.Moving > 0 && g.Below+g.Above > 0:
 		return Undecided, Unsteady
 	case g.Below == n && math.Abs(g.Deviation) > U:
 		return Short, Beyond
@@ -93,4 +94,16 @@ func (j *Judge) weigh(g *Grounds) (Verdict, Ground) {
 		return Holding, Within
 	}
 	return j.Last, Between
+}
+
+// moving counts the minutes by which the load was not steady. On the crest of a swing it is
+// steady for a moment, which makes no window that is beyond its allowance.
+func moving(all []Seen) int {
+	n := 0
+	for i := range all {
+		if all[i].Moving {
+			n++
+		}
+	}
+	return n
 }

@@ -75,7 +75,9 @@ func (j *Judge) Observe(m *Minute, e expect.Expected) {
 	j.Witness.observe(m)
 	j.sense(m)
 	j.rest(m)
-	j.Window = append(j.Window, compare(m, e))
+	seen := compare(m, e)
+	seen.Moving = m.Whole && !j.Gate.Now.Steady
+	j.Window = append(j.Window, seen)
 	if n := len(j.Window); n > j.lasting {
 		j.Window = append(j.Window[:0], j.Window[n-j.lasting:]...)
 	}

@@ -58,6 +58,7 @@ type Seen struct {
 	At, Errors      Point   // where the stream ran, and the standard uncertainties of that by what lasts
 	Latent          bool
 	Doubt           cause.Mark
+	Moving          bool // the load was not steady by then
 }
 
 // compare sets a minute beside what is expected of it.

@@ -10,7 +10,7 @@ import (
 // follow gives a window to the monitor each time that its minutes are new, whole, expected
 // and steady.
 func (j *Judge) follow(g *Grounds) {
-	if j.Block++; j.Block < j.lasting || !g.Compared() || g.Expected == 0 {
+	if j.Block++; j.Block < j.lasting || !g.Compared() || g.Moving > 0 || g.Expected == 0 {
 		return
 	}
 	j.Block = 0

@@ -145,6 +145,9 @@ func (p *page) because() string {
 	case design.NotExpected:
 		return "undecided: nothing is known of what is expected: " + g.Why
 	case design.Unsteady:
+		if g.Steady.Steady {
+			return fmt.Sprintf("undecided: by %d of the %d minutes the load was not steady, and no duty is beyond its allowance until it was for all of them", g.Moving, g.Lasting)
+		}
 		return fmt.Sprintf("undecided: the %s is not steady, and nothing is compared until it is", g.Steady.Worst)
 	case design.Beyond:
 		return fmt.Sprintf("%v: each of the %d minutes lies %s what was expected by more than the allowance, and their mean by more than its expanded uncertainty of %s kW", g.Verdict, g.Lasting, side, U)
