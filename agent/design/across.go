@@ -19,7 +19,7 @@ type Across struct {
 // Evidence joins both sides with what x tells of the exchanger, of which it fills in what
 // ln(UA/UA_clean) does to the deviation.
 func (a *Across) Evidence(own, other cause.Evidence, x cause.Exchanger) cause.Evidence {
-	x.OnDeviation = a.byConductance()
+	x.OnDeviation = a.Model.Sensitivity(&a.State)
 	return own.Beside(other, x, func(r [6]float64) (cause.Effect, bool) {
 		s := a.State
 		near, far := &s.Hot, &s.Cold
@@ -38,21 +38,4 @@ func (a *Across) Evidence(own, other cause.Evidence, x cause.Exchanger) cause.Ev
 		}
 		return e, t.Ratio == t.Ratio && e.Deviation == e.Deviation
 	})
-}
-
-// byConductance is what ln(UA) does to the duty, W: by a hundredth of UA up and down.
-func (a *Across) byConductance() float64 {
-	const step = 0.01
-	scaled := func(by float64) float64 {
-		m := *a.Model
-		m.Wall /= by
-		m.Hot.Resistance /= by
-		m.Cold.Resistance /= by
-		duty, err := m.Duty(&a.State)
-		if err != nil {
-			return 0
-		}
-		return duty
-	}
-	return (scaled(1+step) - scaled(1-step)) / (2 * step)
 }

@@ -25,8 +25,18 @@ func (a *Attest) observe(m *Minute) {
 // source.
 const idleError = 0.1 / 1.7320508
 
-// Evidence is what is known of the load over its last minutes, for [cause.Rank].
+// Evidence is what is known of the load over its last minutes, for [cause.Rank]: where it is a
+// side of an exchanger, with what both sides tell together.
 func (j *Judge) Evidence() cause.Evidence {
+	e := j.own()
+	if j.exchange == nil {
+		return e
+	}
+	return j.across().Evidence(e, j.beside.own(), j.exchange.evidence())
+}
+
+// own is what the load itself tells.
+func (j *Judge) own() cause.Evidence {
 	g := &j.grounds
 	e := cause.Evidence{Subject: j.target.Name}
 	run, ok := j.ran()

@@ -53,6 +53,9 @@ type Judge struct {
 	target     Target
 	lasting    int
 	grounds    Grounds
+	exchange   *Exchange // that the load is a side of, 0 the hot one; nil for none
+	side       int
+	beside     *Judge // of the other side
 }
 
 // NewJudge returns a judge of a load with the given target. A lasting of less
@@ -64,6 +67,11 @@ func newJudge(t Target, l limits) *Judge {
 	j.Drift = l.monitor(j.lasting, t.FalseWarnings)
 	j.decide()
 	return j
+}
+
+// meets makes the load a side of an exchanger, and beside the judge of the other side.
+func (j *Judge) meets(x *Exchange, side int, beside *Judge) {
+	j.exchange, j.side, j.beside = x, side, beside
 }
 
 // Observe takes in the next minute with what is expected of it. A minute that does not
@@ -131,6 +139,7 @@ func (j *Judge) restore(was Judge) {
 		return
 	}
 	was.target, was.lasting, was.Drift.limit = j.target, j.lasting, j.Drift.limit
+	was.exchange, was.side, was.beside = j.exchange, j.side, j.beside
 	*j = was
 	j.decide()
 }

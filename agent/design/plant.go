@@ -5,15 +5,17 @@ import (
 	"heatreeve/agent/design/expect"
 )
 
-// Config is what a plant's loads should do.
+// Config is what a plant's loads and exchangers should do.
 type Config struct {
-	Loads []Target
+	Loads      []Target
+	Exchangers []Exchanger
 }
 
-// Plant judges all loads of one site. The same minutes give the same verdicts.
+// Plant judges all loads and exchangers of one site. The same minutes give the same verdicts.
 type Plant struct {
-	judges  []*Judge
-	changed []Warning
+	judges    []*Judge
+	exchanges []*Exchange
+	changed   []Warning
 }
 
 // NewPlant returns the judges of a plant that has shown nothing yet.
@@ -22,15 +24,48 @@ func NewPlant(cfg Config) *Plant {
 	for _, t := range cfg.Loads {
 		p.judges = append(p.judges, newJudge(t, l))
 	}
+	for _, of := range cfg.Exchangers {
+		x := newExchange(of, l)
+		p.exchanges = append(p.exchanges, x)
+		for side, load := range [...]int{of.Hot, of.Cold} {
+			p.judges[load].meets(x, side, p.judges[[...]int{of.Cold, of.Hot}[side]])
+		}
+	}
 	return p
 }
 
 // Observe takes in the next minute of a load, with the hour of the week in which it began.
-// Minutes of one load come in the order of time.
+// Minutes of one load come in the order of time. What a load is judged by its exchanger for
+// waits for the other side's minute, at most a quarter of an hour.
 func (p *Plant) Observe(load int, m Minute, hour int) {
 	j := p.judges[load]
-	j.Observe(&m, j.expected(&m, hour))
+	if !j.target.ByExchanger {
+		j.Observe(&m, j.expected(&m, hour))
+	}
+	if x := j.exchange; x != nil {
+		x.Pairing.enter(j.side, m)
+		for pair, ok := x.Pairing.next(); ok; pair, ok = x.Pairing.next() {
+			p.settle(x, pair)
+			x.Pairing.drop(pair)
+		}
+		p.changed = x.take(p.changed)
+	}
 	p.changed = j.take(p.changed)
+}
+
+// settle judges a minute of both sides of an exchanger.
+func (p *Plant) settle(x *Exchange, pair [2]*Minute) {
+	steady := true
+	sides := [...]*Judge{p.judges[x.of.Hot], p.judges[x.of.Cold]}
+	for side, j := range sides {
+		if m := pair[side]; m != nil && j.target.ByExchanger {
+			j.Observe(m, x.expected(side, pair))
+			p.changed = j.take(p.changed)
+		}
+		steady = steady && j.Gate.Now.Steady
+	}
+	x.observe(pair, steady)
+	x.warn(sides[0])
 }
 
 // expected is what the design tells of a minute.
@@ -53,11 +88,17 @@ func (p *Plant) Grounds(load int) Grounds { return p.judges[load].Grounds() }
 // Evidence is what is known of a load, for [cause.Rank].
 func (p *Plant) Evidence(load int) cause.Evidence { return p.judges[load].Evidence() }
 
-// Warnings returns those that stand, by load.
+// Exchanger is what an exchanger did in its last window.
+func (p *Plant) Exchanger(i int) Standing { return p.exchanges[i].Last }
+
+// Warnings returns those that stand, by load and then by exchanger.
 func (p *Plant) Warnings() []Warning {
 	var all []Warning
 	for _, j := range p.judges {
 		all = append(all, j.Standing...)
+	}
+	for _, x := range p.exchanges {
+		all = append(all, x.Standing...)
 	}
 	return all
 }
@@ -70,27 +111,36 @@ func (p *Plant) Changed() []Warning {
 	return out
 }
 
-// Saved is the state of a plant, by the names of loads.
+// Saved is the state of a plant, by the names of loads and exchangers.
 type Saved struct {
-	Judges map[string]Judge
+	Judges    map[string]Judge
+	Exchanges map[string]Exchange
 }
 
 // Save returns the state that Restore goes on from to the same verdicts.
 func (p *Plant) Save() Saved {
-	s := Saved{Judges: make(map[string]Judge, len(p.judges))}
+	s := Saved{Judges: make(map[string]Judge, len(p.judges)), Exchanges: make(map[string]Exchange, len(p.exchanges))}
 	for _, j := range p.judges {
 		s.Judges[j.target.Name] = *j
+	}
+	for _, x := range p.exchanges {
+		s.Exchanges[x.of.Name] = *x
 	}
 	return s
 }
 
-// Restore takes up what an earlier plant saved. A load that it does not know begins afresh.
-// So does one of which another duty is expected, since a sum of deviations from something
-// else tells nothing; its warnings stand until they are decided on by the new design.
+// Restore takes up what an earlier plant saved. A load or exchanger that it does not know
+// begins afresh. So does one of which something else is expected, since a sum of deviations
+// from that tells nothing; its warnings stand until they are decided on by the new design.
 func (p *Plant) Restore(s Saved) {
 	for _, j := range p.judges {
 		if was, ok := s.Judges[j.target.Name]; ok {
 			j.restore(was)
+		}
+	}
+	for _, x := range p.exchanges {
+		if was, ok := s.Exchanges[x.of.Name]; ok {
+			x.restore(was)
 		}
 	}
 }

@@ -117,6 +117,9 @@ type Exchanger struct {
 	Trend       Estimate // of R_f, K/W a week
 	Days        []Day    // oldest first
 	Since       int64    // day on which what is off began, by a monitor; 0 where none says
+	// Signalled says that a monitor of many windows has found closure or conductance to be off:
+	// the figures of the last window alone need not show it.
+	Signalled bool
 }
 
 // Evidence is what is known of one load or one exchanger over one window, in SI. What is

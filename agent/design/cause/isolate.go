@@ -61,19 +61,26 @@ type isolation struct {
 	whiten     func([]float64) []float64
 	total      float64 // their sum of squares
 	scale      float64 // 1 / (1 + (signatureError)²·total)
+	signalled  bool    // it is known that they are not by chance
 }
 
+// byTest is the probability from which the global test says that statistics are not by chance.
+const byTest = 0.95
+
 // significance is the probability that the statistics are not by chance; 0 where they
-// pass the global test, at 95 % of chi-square.
+// pass the global test, at 95 % of chi-square, and no monitor says otherwise.
 func (s *isolation) significance() float64 {
 	if len(s.statistics) == 0 {
 		return 0
 	}
 	p := distuv.ChiSquared{K: float64(len(s.statistics))}.CDF(s.total)
-	if !(p >= 0.95) {
-		return 0
+	switch {
+	case s.signalled:
+		return max(p, byTest)
+	case p >= byTest:
+		return p
 	}
-	return p
+	return 0
 }
 
 // isolate weighs the statistics with the covariance that the faults' own uncertainties

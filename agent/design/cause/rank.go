@@ -15,6 +15,7 @@ const least = 0.05
 func Rank(e Evidence) []Cause {
 	faults := e.faults()
 	iso := isolate(e.statistics(), faults)
+	iso.signalled = e.Exchanger.Signalled
 	causes, misread := e.faulty(iso, faults)
 	causes = append(causes, e.away(iso, 1-misread)...)
 	causes = append(causes, e.lowDifference()...)

@@ -145,7 +145,7 @@ func arbitrary(t *rapid.T) Evidence {
 		Witness:    estimate("witness"),
 		Exchanger: Exchanger{
 			"x", estimate("closure"), estimate("conductance"), estimate("shift"), estimate("shift"), rapid.Bool().Draw(t, "ill"),
-			x("effectiveness"), x("limit"), x("by"), estimate("fouling"), estimate("trend"), nil, rapid.Int64Range(0, 50).Draw(t, "since"),
+			x("effectiveness"), x("limit"), x("by"), estimate("fouling"), estimate("trend"), nil, rapid.Int64Range(0, 50).Draw(t, "since"), rapid.Bool().Draw(t, "signalled"),
 		},
 	}
 	tags := rapid.SampledFrom([]string{"", "a", "b", "c", "d", "e", "f", "g"})

@@ -84,3 +84,25 @@ func (m *Model) Duty(s *State) (float64, error) {
 	eps := m.Effectiveness(m.Clean(s)/least, ratio, hotIsMin)
 	return eps * least * (s.Hot.Inlet - s.Cold.Inlet), nil
 }
+
+// Sensitivity is the change of the clean exchanger's duty for a change of its conductance by
+// all of itself, W: dΦ/d ln UA. It is 0 where no heat can pass.
+func (m *Model) Sensitivity(s *State) float64 {
+	const step = 1e-4
+	up, down := m.scaled(1+step), m.scaled(1-step)
+	above, err := up.Duty(s)
+	if err != nil {
+		return 0
+	}
+	below, _ := down.Duty(s)
+	return (above - below) / (2 * step)
+}
+
+// scaled is the model with all its conductances times by.
+func (m *Model) scaled(by float64) Model {
+	x := *m
+	x.Hot.Resistance /= by
+	x.Cold.Resistance /= by
+	x.Wall /= by
+	return x
+}
