@@ -91,7 +91,7 @@ func (x *Exchange) restore(was Exchange) {
 // observe takes in a minute of both sides, of which one may be missing; steady tells whether
 // both are.
 func (x *Exchange) observe(pair [2]*Minute, steady bool) {
-	if !both(pair) {
+	if !both(pair) || !steady {
 		x.lapse()
 		return
 	}
@@ -105,7 +105,7 @@ func (x *Exchange) observe(pair [2]*Minute, steady bool) {
 		}
 		x.Window[i] = w
 	}
-	if x.Block++; steady && x.Block >= x.lasting && len(x.Window[0]) == x.lasting {
+	if x.Block++; x.Block >= x.lasting && len(x.Window[0]) == x.lasting {
 		x.Block = 0
 		x.weigh()
 	}
