@@ -19,7 +19,15 @@ func (p *page) expected() {
 	}
 	var duty term
 	var relative float64 // uncertainty of the site file, as a fraction
+	ok := false
+	if p.Exchanger != nil {
+		duty, ok = p.clean(p.Exchanger)
+	}
 	switch of := g.Target.Expect.(type) {
+	case nil:
+		if !ok {
+			duty = p.plainly()
+		}
 	case expect.Fixed:
 		duty = p.given("Qd", "design duty", x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "site file")
 	case expect.Table:
@@ -29,10 +37,16 @@ func (p *page) expected() {
 	case expect.Baseline:
 		duty = p.baseline(&of)
 	default:
-		duty = p.given("Qd", "expected at the conditions of the last minute", x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "")
+		duty = p.plainly()
 	}
 	p.at["expected"] = duty
 	p.doubt(duty, relative)
+}
+
+// plainly writes what is expected without how.
+func (p *page) plainly() term {
+	q := p.Grounds.Today.Duty / 1e3
+	return p.given("Qd", "expected at the conditions of the last minute", q, "kW", place(q, 10), "")
 }
 
 // doubt writes how unsure the expectation is.

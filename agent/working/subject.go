@@ -19,6 +19,8 @@ type Subject struct {
 	Grounds design.Grounds // of the verdict, by the minutes before
 	// Evidence is what is known of these minutes, for what to look at first.
 	Evidence cause.Evidence
+	// Exchanger is that by which the duty is expected; nil where it is not.
+	Exchanger *Exchanger
 	// Past is that only some minutes before were put through once more, so that what goes back
 	// further, the sums of small deviations, is not known.
 	Past  bool

@@ -1,6 +1,9 @@
 package working
 
-import "strings"
+import (
+	"math"
+	"strings"
+)
 
 // How firmly a term holds together, for brackets.
 const (
@@ -52,6 +55,18 @@ func (t term) over(b term) term {
 func (t term) squared() term {
 	law, text := t.bracketed(asOne)
 	return term{law + "²", text + "²", t.value * t.value, asOne}
+}
+
+// exp is the exponential of a term.
+func (t term) exp() term {
+	return term{"exp(" + t.law + ")", "exp(" + t.text + ")", math.Exp(t.value), asOne}
+}
+
+// toThe is a term to the power of b.
+func (t term) toThe(b term) term {
+	law, text := t.bracketed(asOne)
+	bLaw, bText := b.bracketed(asOne)
+	return term{law + "^" + bLaw, text + "^" + bText, math.Pow(t.value, b.value), asOne}
 }
 
 // sum adds up; it must have one term at least.

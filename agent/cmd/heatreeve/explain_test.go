@@ -70,6 +70,9 @@ func (c *calculator) power() float64 {
 	for c.eat("²") {
 		x *= x
 	}
+	if c.eat("^") {
+		return math.Pow(x, c.one())
+	}
 	return x
 }
 
@@ -81,6 +84,10 @@ func (c *calculator) one() float64 {
 		x := c.sum()
 		c.close()
 		return math.Sqrt(x)
+	case c.eat("exp("):
+		x := c.sum()
+		c.close()
+		return math.Exp(x)
 	case c.eat("("):
 		x := c.sum()
 		c.close()
@@ -113,7 +120,7 @@ func calculated(text string) (float64, error) {
 
 func TestCalculator(t *testing.T) {
 	for text, want := range map[string]float64{
-		"1 + 2 × 3": 7, "(1 + 2) × 3": 9, "√(3² + 4²)": 5, "8 / 4 / 2": 1, "5 − (-2)": 7, "(-2)²": 4, "0.5 × √(16) − 1": 1,
+		"1 + 2 × 3": 7, "(1 + 2) × 3": 9, "√(3² + 4²)": 5, "8 / 4 / 2": 1, "5 − (-2)": 7, "(-2)²": 4, "0.5 × √(16) − 1": 1, "6 / (8 / 2)^0.5 × exp(-1 × 0)": 3,
 	} {
 		if got, err := calculated(text); err != nil || got != want {
 			t.Errorf("%s = %g, %v; want %g", text, got, err, want)
@@ -217,7 +224,7 @@ func sameDigits(x float64, value string) bool {
 func sameNumbers(t *testing.T, l *printed, values map[string]string) {
 	t.Helper()
 	split := func(s string) []string {
-		return strings.FieldsFunc(s, func(r rune) bool { return strings.ContainsRune(" ()+−×/√²", r) })
+		return strings.FieldsFunc(s, func(r rune) bool { return strings.ContainsRune(" ()+−×/√²^", r) })
 	}
 	law, numbers := split(l.law), split(l.formula)
 	if len(law) != len(numbers) {

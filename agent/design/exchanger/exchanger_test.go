@@ -191,8 +191,8 @@ func TestOffDesign(t *testing.T) {
 
 func TestFilmFollowsTemperature(t *testing.T) {
 	f := Film{Resistance: 1, Flow: 1, Exponent: 0.8, PerKelvin: 0.01, Temperature: 300}
-	near(t, "resistance 10 K warmer", f.at(1, 310), 1/1.1, 1e-12)
-	near(t, "resistance at twice the flow", f.at(2, 300), math.Pow(2, -0.8), 1e-12)
+	near(t, "resistance 10 K warmer", f.At(1, 310), 1/1.1, 1e-12)
+	near(t, "resistance at twice the flow", f.At(2, 300), math.Pow(2, -0.8), 1e-12)
 }
 
 // The standard uncertainties by sensitivities are the scatter of 20,000 draws (JCGM 101).

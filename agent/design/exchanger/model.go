@@ -18,8 +18,8 @@ type Film struct {
 	Temperature float64 // K
 }
 
-// at is the resistance at another flow and mean temperature.
-func (f *Film) at(flow, temperature float64) float64 {
+// At is the resistance at another flow and mean temperature, K/W.
+func (f *Film) At(flow, temperature float64) float64 {
 	r := f.Resistance
 	if f.Exponent != 0 {
 		r *= math.Pow(flow/f.Flow, -f.Exponent)
@@ -54,7 +54,7 @@ type State struct{ Hot, Cold Stream }
 // Clean is the conductance UA of the clean exchanger at the flows and temperatures of a
 // state, W/K.
 func (m *Model) Clean(s *State) float64 {
-	return 1 / (m.Hot.at(s.Hot.Flow, (s.Hot.Inlet+s.Hot.Outlet)/2) + m.Wall + m.Cold.at(s.Cold.Flow, (s.Cold.Inlet+s.Cold.Outlet)/2))
+	return 1 / (m.Hot.At(s.Hot.Flow, (s.Hot.Inlet+s.Hot.Outlet)/2) + m.Wall + m.Cold.At(s.Cold.Flow, (s.Cold.Inlet+s.Cold.Outlet)/2))
 }
 
 // rates are the smaller capacity rate, its ratio to the other, and whose it is.
