@@ -7,6 +7,7 @@ import (
 	"net/http"
 	"time"
 
+	"heatreeve/agent/design"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
 )
@@ -108,11 +109,20 @@ func (s *explains) newest(ctx context.Context, load int) (x working.Subject, err
 // answer tells what the newest figure was worked from; in the goroutine of the beat.
 func (a *Agent) answer(r *rhythm, q question) {
 	l := r.books.accounts
-	x := working.Subject{Site: a.site, Load: q.load, Basis: l.engine.Basis(q.load), Grounds: l.verdicts.Grounds(q.load), Evidence: l.verdicts.Evidence(q.load)}
+	x := working.Subject{Site: a.site, Load: q.load, Basis: l.engine.Basis(q.load), Grounds: l.verdicts.Grounds(q.load), Evidence: l.verdicts.Evidence(q.load), Exchanger: expecting(l.verdicts, q.load)}
 	if late := a.o.Now().Sub(time.Unix(0, l.engine.Through())); late > time.Minute {
 		x.Notes = append(x.Notes, fmt.Sprintf("event time has come no further: it is %v behind the clock of this machine", late.Round(time.Second)))
 	}
 	q.answer <- x
+}
+
+// expecting is the exchanger by which a load's duty is expected, nil for none.
+func expecting(p *design.Plant, load int) *working.Exchanger {
+	of, minute, ok := p.Expecting(load)
+	if !ok {
+		return nil
+	}
+	return &working.Exchanger{Name: of.Name, Model: of.Model, State: minute, Loss: of.Loss, Hot: load == of.Hot}
 }
 
 // Explain tells the working of a figure from a history: a data folder, or a copy of its

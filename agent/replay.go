@@ -202,7 +202,7 @@ func (r *replay) run(ctx context.Context, g int64) (x working.Subject, err error
 	}
 	a.advance(loads.Beat{Through: g})
 	a.advance(loads.Beat{Through: g + r.cfg.Grid})
-	x = working.Subject{Site: r.site, Load: r.load, Basis: a.engine.Basis(0), Grounds: a.verdicts.Grounds(0), Evidence: a.verdicts.Evidence(0), Past: true}
+	x = working.Subject{Site: r.site, Load: r.load, Basis: a.engine.Basis(0), Grounds: a.verdicts.Grounds(0), Evidence: a.verdicts.Evidence(0), Exchanger: expecting(a.verdicts, 0), Past: true}
 	r.back(&x.Basis)
 	x.Notes = r.notes()
 	return x, nil

@@ -60,8 +60,9 @@ type Exchange struct {
 	Window  [2][]Minute // minutes in a row that are whole on both sides
 	Block   int         // since the last window ended
 	Last    Standing
-	Fouling Monitor // of ln(UA/UA_clean)
-	Balance Monitor // of the closure as a fraction of the duty
+	Minute  exchanger.State // of the last minute by which a duty was expected
+	Fouling Monitor         // of ln(UA/UA_clean)
+	Balance Monitor         // of the closure as a fraction of the duty
 	Days    Days
 	Trend   exchanger.Trend // of the fouling resistance
 	Roll
@@ -218,6 +219,7 @@ func (x *Exchange) expected(side int, pair [2]*Minute) expect.Expected {
 		}
 	}
 	s := exchanger.State{Hot: streamOf([]Minute{*pair[0]}), Cold: streamOf([]Minute{*pair[1]})}
+	x.Minute = s
 	clean, err := x.of.Model.Duty(&s)
 	if err != nil {
 		return expect.Expected{Why: "exchanger " + x.of.Name + ": " + err.Error()}

@@ -184,3 +184,16 @@ func BenchmarkExchangerMinute(b *testing.B) {
 		x.run(b, 1)
 	}
 }
+
+// What is expected of a load can be worked again from the state of the last minute.
+func TestExpectingExchanger(t *testing.T) {
+	b := newBench(6)
+	b.run(t, 30)
+	for load := range 2 {
+		of, minute, ok := b.Expecting(load)
+		duty, err := of.Model.Duty(&minute)
+		if g := b.Grounds(load); !ok || err != nil || duty != g.Today.Duty || of.Name != "plates" {
+			t.Errorf("load %d: %v W by %q (%v, %v), expected %v W", load, duty, of.Name, ok, err, g.Today.Duty)
+		}
+	}
+}

@@ -2,6 +2,7 @@ package design
 
 import (
 	"heatreeve/agent/design/cause"
+	"heatreeve/agent/design/exchanger"
 	"heatreeve/agent/design/expect"
 )
 
@@ -87,6 +88,16 @@ func (p *Plant) Grounds(load int) Grounds { return p.judges[load].Grounds() }
 
 // Evidence is what is known of a load, for [cause.Rank].
 func (p *Plant) Evidence(load int) cause.Evidence { return p.judges[load].Evidence() }
+
+// Expecting is the exchanger by which the duty of a load is expected, with its state in the
+// last minute; false where it is expected by something else.
+func (p *Plant) Expecting(load int) (of Exchanger, minute exchanger.State, ok bool) {
+	j := p.judges[load]
+	if !j.target.ByExchanger || j.exchange == nil {
+		return of, minute, false
+	}
+	return j.exchange.of, j.exchange.Minute, true
+}
 
 // Exchanger is what an exchanger did in its last window.
 func (p *Plant) Exchanger(i int) Standing { return p.exchanges[i].Last }
