@@ -5,7 +5,6 @@ import (
 	"time"
 
 	"heatreeve/agent/design"
-	"heatreeve/agent/design/expect"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
@@ -21,10 +20,8 @@ func designOf(s *site.Site) design.Config {
 }
 
 func targetOf(s *site.Site, l *site.HeatLoad) design.Target {
-	t := design.Target{Name: l.Name, Allow: l.Design.Allow, Lasting: l.Design.Lasting}
-	if l.Design.Duty != 0 {
-		t.Expect = expect.Fixed{Duty: l.Design.Duty}
-	}
+	d := &l.Design
+	t := design.Target{Name: l.Name, Allow: d.Allow, Lasting: d.Lasting, FalseWarnings: d.FalseWarnings, Expect: expectationOf(s, d)}
 	if st := l.Stream; st != nil {
 		t.Tags = design.Tags{Flow: tagName(s, st.Flow), Inlet: tagName(s, st.Inlet), Outlet: tagName(s, st.Outlet)}
 		t.Point = pointOf(l)

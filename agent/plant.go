@@ -66,7 +66,7 @@ func meaning(t *site.Tag) string {
 }
 
 func loadOf(l *site.HeatLoad) loads.Load {
-	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness, Running: loads.Source(l.Running), HasRunning: l.HasRunning}
+	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness, Running: loads.Source(l.Running), HasRunning: l.HasRunning, Drivers: driversOf(&l.Design)}
 	if l.Vessel != nil {
 		load.Vessel = vesselOf(l.Vessel)
 	} else {

@@ -23,7 +23,13 @@ var keys = map[string][]string{
 	"loads.*.stream.corrections":        {"pump", "hold", "stored"},
 	"loads.*.stream.corrections.stored": {"content", "metal", "over"},
 	"loads.*.vessel":                    {"fluid", "temperature", "pressure", "content", "rigid", "shell", "over", "still", "gives", "takes", "margin", "idle_below"},
-	"loads.*.design":                    {"duty", "allow", "lasting", "inlet", "outlet", "pressure"},
+	"loads.*.design": {"duty", "table", "week", "baseline", "exchanger", "uncertainty", "allow", "false_warnings", "lasting",
+		"inlet", "outlet", "pressure"},
+	"loads.*.design.table":              {"against", "points"},
+	"loads.*.design.week":               weekKeys,
+	"loads.*.design.baseline":           {"learned", "duty", "against", "correlation", "residual", "lag", "samples", "fewest", "span", "hours"},
+	"loads.*.design.baseline.against.*": {"each", "adds", "uncertainty", "centre", "from", "to", "below", "above"},
+	"loads.*.design.baseline.hours":     weekKeys,
 	"fluids.*.flue gas":                 {"fuel", "elements", "excess air", "oxygen", "wet oxygen", "air humidity"},
 	"fluids.*.flue gas.elements":        {"C", "H", "O", "N", "S", "water", "ash"},
 	"fluids.*.food":                     {"water", "fat", "protein", "carbohydrate", "fibre", "ash"},
@@ -34,6 +40,9 @@ var keys = map[string][]string{
 	"fluids.*.polynomial":               append([]string{"cp", "density"}, described...),
 	"fluids.*.polynomial.uncertainty":   {"cp", "density"},
 }
+
+// weekKeys are the keys of a week of hours.
+var weekKeys = []string{"workday", "weekend", "monday", "tuesday", "wednesday", "thursday", "friday", "saturday", "sunday"}
 
 // described are the keys of a fluid by figures of its own, beside the figures.
 var described = []string{"source", "phase", "uncertainty", "pressure", "max_pressure", "freezing", "boiling", "range", "molar_mass"}

@@ -212,14 +212,7 @@ func notNegative(v value, d unit.Dimension) float64 {
 
 // design reads the optional block.
 func (r *reader) design(o object, d *Design) {
-	if v, ok := o.get("duty"); ok {
-		d.Duty = r.constant(v, unit.Power)
-	}
-	if v, ok := o.get("allow"); ok {
-		d.Allow, _ = v.part(1e-6, 1, "more than 0 % up to 100 %", "")
-	}
-	o.needs("duty", "allow")
-	o.needs("allow", "duty")
+	r.expectation(o, d)
 	o.setDuration("lasting", &d.Lasting, time.Second, day, "1 s to 1 d")
 	if v, ok := o.get("inlet"); ok {
 		d.Inlet = r.constant(v, unit.Temperature)
@@ -236,7 +229,7 @@ func (r *reader) design(o object, d *Design) {
 func (o object) ofVessel() {
 	for _, key := range []string{"inlet", "outlet", "pressure"} {
 		if v, ok := o.get(key); ok {
-			v.fault("is of a stream; the design of a vessel has duty, allow and lasting")
+			v.fault("is of a stream; the design of a vessel has what is expected, allow and lasting")
 		}
 	}
 }

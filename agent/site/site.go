@@ -170,7 +170,8 @@ func (l *HeatLoad) Fluid() (string, thermo.Fluid) {
 	return l.Stream.FluidName, l.Stream.Fluid
 }
 
-// Sources are all tags and constants that the load reads, its witness and its pump too.
+// Sources are all tags and constants that the load reads, its witness, its pump and what its expected duty
+// goes by too.
 func (l *HeatLoad) Sources() []Source {
 	var all []Source
 	if v := l.Vessel; v != nil {
@@ -184,6 +185,9 @@ func (l *HeatLoad) Sources() []Source {
 	}
 	if l.HasRunning {
 		all = append(all, l.Running)
+	}
+	for _, tag := range l.Design.Drivers() {
+		all = append(all, Source{Tag: tag})
 	}
 	return all
 }
@@ -249,11 +253,32 @@ type Vessel struct {
 
 // Design is what a load should move.
 type Design struct {
-	Duty          float64       // W; 0 when the file gives none
-	Allow         float64       // fraction of the duty
+	// Of these there is one at most; a load without has no design.
+	Duty      float64 // W; 0 when the file gives none
+	Table     *Table
+	Week      *[HoursAWeek]float64 // W
+	Baseline  *Baseline
+	Exchanger string // the name of one, which tells what is expected
+
+	Uncertainty   float64       // relative standard uncertainty of Duty, Table or Week; default 0
+	Allow         float64       // fraction of the expected duty
+	FalseWarnings float64       // how many a year are put up with; 0 when the file does not say
 	Lasting       time.Duration // how long a deviation must stand; default 10 min
 	Inlet, Outlet float64       // K; 0 when the file gives none
 	Pressure      float64       // Pa, absolute; 0 when the file gives none
+}
+
+// Drivers are the tags that what is expected goes by, in their order there.
+func (d *Design) Drivers() (tags []int) {
+	if d.Table != nil {
+		return d.Table.Against
+	}
+	if d.Baseline != nil {
+		for _, t := range d.Baseline.Terms {
+			tags = append(tags, t.Tag)
+		}
+	}
+	return tags
 }
 
 // Timing is how event time moves.
