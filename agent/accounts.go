@@ -8,6 +8,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
+	"heatreeve/agent/warn"
 )
 
 // accounts are the engine and the judges of one plant, moved forward together a
@@ -23,6 +24,8 @@ type accounts struct {
 	verdicts   *design.Plant
 	place      *time.Location // whose clock tells the hour of the week
 	closed     []loads.Minute
+	roll       warn.Roll // of the warnings
+	watched    []warn.Watched
 
 	site, zone string            // name of the plant, and time zone of its reports
 	units      map[string]string // SI unit of the readings of each tag, or changedUnit
@@ -35,7 +38,7 @@ func newAccounts(cfg loads.Config, designs design.Config, site [32]byte, place *
 	if err != nil {
 		return nil, err
 	}
-	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), file: site, engine: engine, verdicts: design.NewPlant(designs), place: place}
+	a := &accounts{cfg: cfg, rules: rulesOf(site, &cfg), file: site, engine: engine, verdicts: design.NewPlant(designs), place: place, watched: watchedOf(designs)}
 	for i := range cfg.Loads {
 		a.byLoad = append(a.byLoad, rulesOfLoad(&cfg, i))
 	}
@@ -74,6 +77,9 @@ type savedAccounts struct {
 	Loads  map[string][32]byte // those of each load; see rulesOfLoad
 	Engine []byte
 	Design design.Saved
+	// Roll has the warnings with the marks of operators, Watched what there can be.
+	Roll    warn.Roll
+	Watched []warn.Watched
 	// Judges is what there was of verdicts before; its names are all that is read.
 	Judges map[string]olderJudge
 
@@ -96,7 +102,7 @@ func (a *accounts) save() ([]byte, error) {
 	if err != nil {
 		return nil, err
 	}
-	s := savedAccounts{Rules: a.rules, File: a.file, Engine: engine, Design: a.verdicts.Save(), Loads: make(map[string][32]byte, len(a.cfg.Loads))}
+	s := savedAccounts{Rules: a.rules, File: a.file, Engine: engine, Design: a.verdicts.Save(), Roll: a.roll, Watched: a.watched, Loads: make(map[string][32]byte, len(a.cfg.Loads))}
 	for i := range a.cfg.Loads {
 		s.Loads[a.cfg.Loads[i].Name] = a.byLoad[i]
 	}
@@ -120,6 +126,7 @@ func (a *accounts) restore(state []byte) (same bool, err error) {
 		a.kept[i] = s.knows(a.cfg.Loads[i].Name)
 	}
 	a.verdicts.Restore(s.Design)
+	a.roll = s.Roll
 	a.fileBefore = s.File
 	a.keepUnits(s.Units)
 	if err := a.engine.Restore(s.Engine); err != nil {

@@ -20,7 +20,10 @@ const mostAddress = 1 << 10
 
 // address is where an agent answers, and which run of it that is: another one may
 // have come to listen there since.
-type address struct{ hostPort, run string }
+type address struct {
+	hostPort, run string
+	key           string // proves that who has it can read the folder; "" of an older agent
+}
 
 // leaveAddress writes the address for those who look for the agent, and which history it is
 // for: a copy of the folder has another one.
@@ -31,7 +34,7 @@ func leaveAddress(data string, a address) error {
 	}
 	path := filepath.Join(data, addressFile)
 	temp := path + ".new"
-	if err := os.WriteFile(temp, []byte(a.hostPort+"\n"+a.run+"\n"+history+"\n"), 0o640); err != nil {
+	if err := os.WriteFile(temp, []byte(a.hostPort+"\n"+a.run+"\n"+history+"\n"+a.key+"\n"), 0o640); err != nil {
 		return fmt.Errorf("address of the agent: %w", err)
 	}
 	return os.Rename(temp, path)
@@ -70,7 +73,7 @@ func findAddress(data string) (address, error) {
 		return address{}, err
 	}
 	lines := strings.Split(text, "\n")
-	if len(lines) != 4 || lines[1] == "" {
+	if len(lines) < 4 || len(lines) > 5 || lines[1] == "" {
 		return address{}, fmt.Errorf("%s is no address of an agent", path)
 	}
 	history, err := identity(data)
@@ -87,7 +90,11 @@ func findAddress(data string) (address, error) {
 	if err := here(at.Addr()); err != nil {
 		return address{}, fmt.Errorf("%s: %w", path, err)
 	}
-	return address{at.String(), lines[1]}, nil
+	key := ""
+	if len(lines) == 5 {
+		key = lines[3]
+	}
+	return address{at.String(), lines[1], key}, nil
 }
 
 // readSome reads a regular file that is no longer than an address.

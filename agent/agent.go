@@ -64,6 +64,7 @@ type Agent struct {
 	watch   *watch // for the beat alone
 	// questions are asked of the beat, which knows the newest figures.
 	questions chan question
+	orders    chan mark // for the beat to carry out
 }
 
 // New returns an agent for s that is not started yet.
@@ -78,7 +79,7 @@ func New(s *site.Site, o Options) (*Agent, error) {
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, relay: newRelay(s), reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question)}
+	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, relay: newRelay(s), reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question), orders: make(chan mark)}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil
@@ -113,7 +114,7 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 		return fmt.Errorf("listen on %q: %w", a.o.Listen, err)
 	}
 	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name }), units: maps.Clone(books.accounts.units)})
-	if err := leaveAddress(a.o.Data, address{listener.Addr().String(), reports.run}); err != nil {
+	if err := leaveAddress(a.o.Data, address{listener.Addr().String(), reports.run, reports.key}); err != nil {
 		a.o.Log.Warn("reports will not find the agent while it runs", "error", err)
 	}
 	defer func() { err = errors.Join(err, forgetAddress(a.o.Data)) }()
@@ -140,7 +141,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 		return a.beats(ctx, books)
 	})
 	g.Go(func() error {
-		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions)))
+		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions), a.orders))
 	})
 	return g.Wait()
 }

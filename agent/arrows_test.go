@@ -30,7 +30,8 @@ var arrows = map[string][]string{
 	"agent/design":     {"agent/design/...", "thermo"},
 	"agent/design/...": {},
 	"agent/site":       {"thermo/..."},
-	"agent/view":       {"agent/loads", "agent/design", "agent/design/...", "ingest/quality"},
+	"agent/warn":       {"agent/design"},
+	"agent/view":       {"agent/warn", "agent/loads", "agent/design", "agent/design/...", "ingest/quality"},
 	"agent/account": {
 		"agent/loads",
 	},
@@ -43,14 +44,14 @@ var arrows = map[string][]string{
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
 	"agent/metrics": {
-		"agent/view", "agent/loads", "agent/design", "ingest/quality",
+		"agent/view", "agent/warn", "agent/loads", "agent/design", "ingest/quality",
 	},
-	"agent/relay": {"agent/view", "agent/loads", "ingest/quality"},
+	"agent/relay": {"agent/view", "agent/warn", "agent/loads", "ingest/quality"},
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
-	"agent/cmd/heatreeve": {"agent", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent/cmd/heatreeve": {"agent", "agent/warn", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }
 
@@ -65,6 +66,7 @@ var outside = map[string][]string{
 	"agent/loads":      {"os", "net", "log", "log/slog", "context", "time", "net/http"},
 	"agent/design":     {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/design/...": {"os", "net", "log", "log/slog", "context", "net/http"},
+	"agent/warn":       {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/working":    {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/relay":      {"os", "net", "log", "log/slog", "context", "net/http"},
 	"agent/parquet":    {"os", "net", "log", "log/slog", "context", "time", "net/http"},

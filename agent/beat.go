@@ -91,6 +91,8 @@ func (a *Agent) beats(ctx context.Context, books *ledger) error {
 			a.atLimit(r, time.Now())
 		case q := <-a.questions:
 			a.answer(r, q)
+		case m := <-a.orders:
+			m.answer <- a.mark(r, m.order)
 		case <-ctx.Done():
 			return a.last(r)
 		}
@@ -161,6 +163,7 @@ func (a *Agent) goOn(r *rhythm, f *intake) {
 // beat takes what came, computes, commits when due, and publishes.
 func (a *Agent) beat(r *rhythm, system time.Time) {
 	a.take(r)
+	r.books.lapsedShelves()
 	if a.due(r, system) {
 		a.commit(r, system, false)
 	}

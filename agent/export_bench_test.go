@@ -171,7 +171,7 @@ func exportOverAndOver(b *testing.B, db *store.Store, n *int) (stop func()) {
 	go func() {
 		for {
 			m := &meter{w: io.Discard, tell: func(Progress) {}}
-			if err := m.ask(ctx, address{strings.TrimPrefix(server.URL, "http://"), s.run}, Selection{Tag: "T-7"}); err != nil {
+			if err := m.ask(ctx, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Selection{Tag: "T-7"}); err != nil {
 				ended <- err
 				return
 			}

@@ -266,7 +266,7 @@ func TestExportRefusals(t *testing.T) {
 	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
 	server := httptest.NewServer(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 		t.Fatal(err)
 	}
 	for _, tt := range []struct {
@@ -401,7 +401,7 @@ func TestUnitThatHasChanged(t *testing.T) {
 		}
 		s := newExports(newReports(history{db: l.store, zone: time.UTC, through: l.through.Load, units: l.accounts.units}))
 		server := httptest.NewServer(s)
-		if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+		if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 			t.Fatal(err)
 		}
 		asked, askedNote := extract("FT")

@@ -39,7 +39,7 @@ func TestExtractFromAgentAndFile(t *testing.T) {
 	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
 	server := httptest.NewServer(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 		t.Fatal(err)
 	}
 	asked := map[string]string{"csv": extract("csv"), "json": extract("json")}
@@ -77,7 +77,7 @@ func TestExtractIsCancelled(t *testing.T) {
 	s := newExports(newReports(h))
 	server := httptest.NewServer(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 		t.Fatal(err)
 	}
 	ctx, cancel = context.WithCancel(t.Context())
@@ -137,7 +137,7 @@ func TestExtractOfWrongAnswers(t *testing.T) {
 			tt.answer(w)
 		}))
 		m := &meter{w: io.Discard, tell: func(Progress) {}}
-		err := m.ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), "R"}, Selection{Tag: "TT-1"})
+		err := m.ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), "R", ""}, Selection{Tag: "TT-1"})
 		if err == nil || !strings.Contains(err.Error(), tt.says) {
 			t.Errorf("%s: %v, want ...%q...", tt.what, err, tt.says)
 		}
@@ -152,7 +152,7 @@ func TestExtractToAFullDisk(t *testing.T) {
 	server := httptest.NewServer(s)
 	defer server.Close()
 	m := &meter{w: fullDisk{}, tell: func(Progress) { t.Error("progress") }}
-	err := m.ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run}, Selection{Tag: "TT-1"})
+	err := m.ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Selection{Tag: "TT-1"})
 	if !errors.Is(err, errFull) || strings.Contains(err.Error(), "breaks off") {
 		t.Error(err)
 	}

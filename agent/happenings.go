@@ -41,12 +41,7 @@ func (h *history) addEvents(r *Report, plan account.Plan) {
 			more++
 			continue
 		}
-		told := Event{At: time.Unix(0, e.At).In(plan.Zone), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
-		if e.Until != 0 {
-			until := time.Unix(0, e.Until).In(plan.Zone)
-			told.Until = &until
-		}
-		r.Events = append(r.Events, told)
+		r.Events = append(r.Events, toldEvent(&e, plan.Zone))
 	}
 	if more > 0 {
 		r.Notes = append(r.Notes, fmt.Sprintf("of what happened the first %d events are told, and not %d more; ask for a shorter time", mostEvents, more))

@@ -55,7 +55,7 @@ func TestInquireOfAFile(t *testing.T) {
 		t.Errorf("with a zone: %+v, %v", r, err)
 	}
 	save("Europe/Dublin")
-	if err := leaveAddress(dir, address{"127.0.0.1:1", "gone"}); err != nil { // by an agent that was killed
+	if err := leaveAddress(dir, address{"127.0.0.1:1", "gone", ""}); err != nil { // by an agent that was killed
 		t.Fatal(err)
 	}
 	copied := filepath.Join(t.TempDir(), "copy.db")
@@ -108,7 +108,7 @@ func TestAskTheAgent(t *testing.T) {
 	s := newReports(historyIn(t, db, "Europe/Dublin"))
 	server := httptest.NewServer(s)
 	defer server.Close()
-	a := address{strings.TrimPrefix(server.URL, "http://"), s.run}
+	a := address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}
 	if err := leaveAddress(dir, a); err != nil {
 		t.Fatal(err)
 	}
@@ -131,12 +131,12 @@ func TestAskTheAgent(t *testing.T) {
 	if _, err := Inquire(t.Context(), dir, Query{From: "2036-10-24"}); err == nil || errors.As(err, &wrong) || !strings.HasPrefix(err.Error(), "the history holds no record") {
 		t.Errorf("nothing to report: %v", err)
 	}
-	if _, err := ask(t.Context(), address{a.hostPort, "other"}, q); !errors.Is(err, errUnreachable) {
+	if _, err := ask(t.Context(), address{a.hostPort, "other", ""}, q); !errors.Is(err, errUnreachable) {
 		t.Errorf("another run: %v", err)
 	}
 	other := httptest.NewServer(http.NotFoundHandler())
 	defer other.Close()
-	if _, err := ask(t.Context(), address{strings.TrimPrefix(other.URL, "http://"), s.run}, q); !errors.Is(err, errUnreachable) {
+	if _, err := ask(t.Context(), address{strings.TrimPrefix(other.URL, "http://"), s.run, ""}, q); !errors.Is(err, errUnreachable) {
 		t.Errorf("another program: %v", err)
 	}
 	for body, want := range map[string]string{"{": "its answer of 1 bytes", "": "its answer of 0 bytes"} {
@@ -162,7 +162,7 @@ func TestAddressOfTheAgent(t *testing.T) {
 	if err := forgetAddress(dir); err != nil {
 		t.Error(err)
 	}
-	want := address{"[::]:9617", "X"}
+	want := address{"[::]:9617", "X", "K"}
 	if err := leaveAddress(dir, want); err != nil {
 		t.Fatal(err)
 	}
@@ -210,7 +210,7 @@ func TestCopyOfAFolderWithItsAddress(t *testing.T) {
 	s := newReports(h)
 	server := httptest.NewServer(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 		t.Fatal(err)
 	}
 	if err := os.CopyFS(copied, os.DirFS(dir)); err != nil {
@@ -234,7 +234,7 @@ func TestSilenceAtTheAddress(t *testing.T) {
 	}
 	defer l.Close()
 	begun := time.Now()
-	_, err = ask(t.Context(), address{l.Addr().String(), "R"}, Query{From: "2026-10-24"})
+	_, err = ask(t.Context(), address{l.Addr().String(), "R", ""}, Query{From: "2026-10-24"})
 	if took := time.Since(begun); !errors.Is(err, errUnreachable) || took < headerTime || took > reportTime/2 {
 		t.Errorf("silence for %v: %v", took, err)
 	}
@@ -249,7 +249,7 @@ func TestReportThatTakesLonger(t *testing.T) {
 	time.AfterFunc(headerTime+time.Second, func() { <-s.turn })
 	server := httptest.NewServer(s)
 	defer server.Close()
-	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run}, Query{From: "2026-10-23"})
+	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Query{From: "2026-10-23"})
 	if err != nil || len(r.Loads) != 1 {
 		t.Errorf("%+v, %v", r, err)
 	}

@@ -9,6 +9,7 @@ import (
 
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
+	"heatreeve/agent/warn"
 	"heatreeve/ingest"
 	"heatreeve/ingest/quality"
 	"heatreeve/store"
@@ -52,6 +53,7 @@ type ledger struct {
 	fault       string
 	diary       diary
 	attested    *attested
+	board       warn.Board // the warnings as they are shown
 }
 
 // openLedger takes up the accounts where the history left them; now is by the system's
@@ -83,6 +85,9 @@ func openLedger(s *site.Site, db *store.Store, o Options, now time.Time) (*ledge
 	if l.attested, err = newAttested(a.cfg.Loads, s.Zone, db, l.loadIDs, l.aged); err != nil {
 		return nil, fmt.Errorf("take up the witnesses: %w", err)
 	}
+	l.warned()
+	a.roll.Forget(a.watched)
+	l.board = a.roll.Board(a.watched)
 	l.batch.Site = &store.SiteFile{From: l.accounts.engine.Through(), Text: s.Text}
 	l.happened(eventStarted, fmt.Sprintf("heatreeve %s, site file %s", o.Version, shortDigest(s.Digest)))
 	if err := l.first(now); err != nil {
@@ -166,6 +171,9 @@ func (l *ledger) resume() error {
 	}
 	l.take(known)
 	if !ok { // as a salvaged history may be: there is nothing but registers and the beats
+		if err := l.closeWarnings(); err != nil {
+			return err
+		}
 		if len(known) > 0 {
 			const text = "the history has no state of the accounts: they go on from the registers as last committed, and the time since then is missing"
 			l.log.Warn(text)
@@ -276,9 +284,13 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 		kept.Readings[i] = store.Reading{Tag: l.tagIDs[r.Tag], At: r.At, Value: r.Value, Stamped: r.Stamped, Mark: uint8(r.Mark)}
 		beat.Readings[i] = readingOf(r)
 	}
-	for _, m := range l.accounts.advance(beat) {
+	closed := l.accounts.advance(beat)
+	for _, m := range closed {
 		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))
 		l.attested.add(m.Load, m.Start, m.Witness, m.Compared)
+	}
+	if len(closed) > 0 {
+		l.warned()
 	}
 	l.batch.Beats = append(l.batch.Beats, kept)
 	l.waiting += len(received)

@@ -52,7 +52,7 @@ func TestParquetOfReadings(t *testing.T) {
 	s := newExports(newReports(h))
 	server := httptest.NewServer(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run}); err != nil {
+	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
 		t.Fatal(err)
 	}
 	var b bytes.Buffer

@@ -17,14 +17,15 @@ func (a *Agent) publish(r *rhythm) {
 	l := r.books
 	s := l.accounts.engine.Snapshot()
 	v := &view.Snapshot{
-		Site:    a.site.Name,
-		At:      s.Through,
-		Slack:   int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
-		Lag:     r.pace.lag.least(),
-		Loads:   make([]view.Load, len(s.Loads)),
-		Tags:    make([]view.Tag, len(s.Tags)),
-		Broker:  brokerView(r.intakes[0]),
-		History: view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Damaged: l.store.Damaged(), Lost: l.lost, LostMinutes: l.lostMinutes},
+		Site:     a.site.Name,
+		At:       s.Through,
+		Slack:    int64(a.site.Timing.Lateness+2*a.site.Timing.Beat+2*a.site.Timing.Grid) + min(r.pace.lag.least(), int64(mostLag)),
+		Lag:      r.pace.lag.least(),
+		Loads:    make([]view.Load, len(s.Loads)),
+		Tags:     make([]view.Tag, len(s.Tags)),
+		Warnings: l.board,
+		Broker:   brokerView(r.intakes[0]),
+		History:  view.History{Bytes: l.store.Bytes(), FileBytes: a.fileBytes(), Failures: l.failures, Fault: l.fault, Damaged: l.store.Damaged(), Lost: l.lost, LostMinutes: l.lostMinutes},
 	}
 	if hasMetrics(a.site) {
 		v.Sparkplug = sparkplugView(r.intakes)

@@ -6,6 +6,7 @@ import (
 	"encoding/gob"
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"maps"
 	"net/http"
@@ -62,6 +63,11 @@ const (
 // get asks the agent at a for a page, and has take the answer, which is of that very run of
 // it. Who does not tell at once that it is that run is taken for no agent.
 func (a address) get(ctx context.Context, path string, v url.Values, take func(*http.Response) error) error {
+	return a.send(ctx, http.MethodGet, path+"?"+v.Encode(), nil, take)
+}
+
+// send is get with another method and a form.
+func (a address) send(ctx context.Context, method, path string, form io.Reader, take func(*http.Response) error) error {
 	ctx, cancel := context.WithCancelCause(ctx)
 	defer cancel(nil)
 	silence := fmt.Errorf("%w at %s within %v", errUnreachable, a.hostPort, headerTime)
@@ -73,11 +79,15 @@ func (a address) get(ctx context.Context, path string, v url.Values, take func(*
 		}
 		return nil
 	}})
-	req, err := http.NewRequestWithContext(traced, http.MethodGet, "http://"+a.hostPort+path+"?"+v.Encode(), nil)
+	req, err := http.NewRequestWithContext(traced, method, "http://"+a.hostPort+path, form)
 	if err != nil {
 		return fmt.Errorf("%w at %q: %w", errUnreachable, a.hostPort, err)
 	}
 	req.Header.Set(runHeader, a.run)
+	if form != nil {
+		req.Header.Set(keyHeader, a.key)
+		req.Header.Set("Content-Type", "application/x-www-form-urlencoded")
+	}
 	transport := &http.Transport{DisableKeepAlives: true, DisableCompression: true, MaxResponseHeaderBytes: headerBytes}
 	resp, err := transport.RoundTrip(req)
 	switch {

@@ -28,13 +28,14 @@ const (
 type reports struct {
 	history history
 	run     string        // names this run of the agent
+	key     string        // is told to those who can read the data folder alone
 	turn    chan struct{} // holds one while a report is in the making or on its way
 	queue   chan struct{} // holds one a query
 	stall   time.Duration
 }
 
 func newReports(h history) *reports {
-	return &reports{history: h, run: rand.Text(), turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
+	return &reports{history: h, run: rand.Text(), key: rand.Text(), turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
 }
 
 func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {

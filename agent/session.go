@@ -18,7 +18,7 @@ func newSession(s *site.Site, b site.Broker, tags []ingest.Tag, o Options, reach
 	if b.Availability != "" {
 		options.Presence = ingest.Words(b.Availability, site.Online, site.Offline)
 	}
-	options.Outbox = max(ingest.DefaultOutbox, 2*len(s.Loads)) // each result has room
+	options.Outbox = max(ingest.DefaultOutbox, 8*len(s.Loads)) // each result has room, and each warning
 	session, err := ingest.New(tags, options)
 	if err != nil {
 		return nil, fmt.Errorf("session with %s: %w", b.Called(), err)

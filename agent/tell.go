@@ -28,6 +28,11 @@ func (a *Agent) tell(system time.Time, last bool) {
 	if err != nil {
 		a.o.Log.Error("a result is not published", "error", err)
 	}
+	warnings, err := a.relay.Warnings(v, system, last)
+	if err != nil {
+		a.o.Log.Error("a warning is not published", "error", err)
+	}
+	results = append(results, warnings...)
 	session := a.intakes[a.site.Publish.Broker].session
 	for _, r := range results {
 		// What finds no room is counted by the session.

@@ -14,8 +14,8 @@ import (
 // flickering signal does not fill the log.
 const tellEvery = time.Minute
 
-// watch tells the log when a load leaves its design, goes blind, or is well again, and
-// once of each load whose duty has a remark.
+// watch tells the log when a load goes blind, or is well again, and once of each load whose
+// duty has a remark. Warnings have lines of their own.
 type watch struct {
 	log  *slog.Logger
 	told []told
@@ -55,9 +55,7 @@ func (w *watch) look(s *view.Snapshot, now time.Time) {
 }
 
 // notable verdicts are told of when they come and when they go.
-func notable(v design.Verdict) bool {
-	return v == design.Short || v == design.Over || v == design.Blind
-}
+func notable(v design.Verdict) bool { return v == design.Blind }
 
 func (w *watch) tell(l *view.Load, f *loads.Figure, v design.Verdict) {
 	args := []any{"load", l.Name, "verdict", v.String()}
@@ -67,8 +65,6 @@ func (w *watch) tell(l *view.Load, f *loads.Figure, v design.Verdict) {
 	switch v {
 	case design.Blind:
 		w.log.Warn("load is blind", append(args, "reason", f.Reason)...)
-	case design.Short, design.Over:
-		w.log.Warn("duty has left its design", append(args, "duty", kilowatts(f.Duty), "design", kilowatts(l.Design), "allow", fmt.Sprintf("%g %%", 100*l.Allow))...)
 	default:
 		w.log.Info("load is well again", append(args, "duty", kilowatts(f.Duty))...)
 	}

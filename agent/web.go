@@ -27,7 +27,7 @@ come first.`
 
 // handler serves the metrics, the two answers that supervisors ask for, reports, explanations
 // and exports.
-func handler(metrics http.Handler, health *health, reports *reports, explains *explains) http.Handler {
+func handler(metrics http.Handler, health *health, reports *reports, explains *explains, orders chan<- mark) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", answer(health.alive))
@@ -35,6 +35,9 @@ func handler(metrics http.Handler, health *health, reports *reports, explains *e
 	mux.Handle("GET "+reportPath, reports)
 	mux.Handle("GET "+explainPath, explains)
 	mux.Handle("GET "+exportPath, newExports(reports))
+	mux.Handle("POST "+markPath, &marks{reports.run, reports.key, orders})
+	mux.Handle("GET "+warningsPath, newBoards(reports, health))
+	mux.Handle("GET "+eventsPath, newEvents(reports))
 	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
 		w.Header().Set("Content-Type", "text/plain; charset=utf-8")
 		front(w, health.latest.Load(), health.now())
@@ -69,9 +72,29 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 		}
 		fmt.Fprint(w, "\n±: twice the standard uncertainty\n")
 		frontKept(w, s)
+		frontWarnings(w, s)
 		fmt.Fprintln(w)
 	}
-	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/explain  the working of a figure as JSON, such as /explain?load=NAME\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n\n%s\n", Safety)
+	fmt.Fprintf(w, "/metrics  heat loads, energy registers and tags, for Prometheus\n/healthz  200 while the agent keeps its beat\n/readyz   200 while broker and history serve it\n/report   heat by hour, day or month as JSON, such as /report?from=2026-12-01&by=day\n/explain  the working of a figure as JSON, such as /explain?load=NAME\n/export   readings of a tag, or minutes or hours of a load, such as /export?load=NAME&from=2026-12-01&format=csv\n/warnings what stands now, with causes and marks, as JSON\n/events   what happened beside the accounts as JSON, such as /events?kind=warning\n\n%s\n", Safety)
+}
+
+// frontWarnings lists the warnings, with what was done about them.
+func frontWarnings(w io.Writer, s *view.Snapshot) {
+	listed := s.Warnings.Listed()
+	if len(listed) > 0 {
+		fmt.Fprintln(w, "\nWarnings:")
+	}
+	for i := range listed {
+		l := &listed[i]
+		state := string(l.State())
+		if l.Mark != nil {
+			state += " by " + l.Mark.By
+		}
+		if l.Shelf != nil {
+			state += ", shelved until " + time.Unix(0, l.Shelf.Until).UTC().Format(time.RFC3339)
+		}
+		fmt.Fprintf(w, "%s, %s, %s\n", l.Subject, l.Text(time.UTC), state)
+	}
 }
 
 // frontKept tells what the broker had kept of tags that have said nothing since.

@@ -26,6 +26,11 @@ var Demo []byte
 //go:embed site.schema.json
 var Schema []byte
 
+// WarningSchema is the JSON Schema of what the agent publishes of a warning.
+//
+//go:embed warning.schema.json
+var WarningSchema []byte
+
 // ResultSchema is the JSON Schema of what the agent publishes of a load.
 //
 //go:embed result.schema.json

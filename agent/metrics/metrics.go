@@ -16,6 +16,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/agent/warn"
 	"heatreeve/ingest/quality"
 )
 
@@ -46,6 +47,10 @@ var (
 	off         = desc("load_deviation_watts", "Mean duty less what was expected of it, over the last minutes that a deviation must last.", "load")
 	offU        = desc("load_deviation_uncertainty_watts", "Standard uncertainty of that deviation.", "load")
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
+
+	warnActive = desc("warning_active", "1 while the warning stands, 0 otherwise; of each kind that there can be on the subject.", "subject", "kind")
+	warnMarked = desc("warning_acknowledged", "1 while the warning stands and is acknowledged.", "subject", "kind")
+	warnShelf  = desc("warning_shelved", "1 while warnings of the kind are shelved, whether or not one stands.", "subject", "kind")
 
 	reading  = desc("tag_reading_timestamp_seconds", "Unix time of the newest accepted reading.", "tag")
 	maxAge   = desc("tag_max_age_seconds", "How long a reading holds; left out where it does as long as its source is alive.", "tag")
@@ -119,6 +124,7 @@ func (c *Collector) Gather() ([]*dto.MetricFamily, error) {
 		out.load(&s.Loads[i], v)
 		out.means(s, i, now)
 	}
+	out.warnings(s.Warnings.Watched)
 	for i := range s.Tags {
 		out.tag(&s.Tags[i])
 	}
@@ -192,6 +198,16 @@ func (o *sink) load(l *view.Load, now design.Verdict) {
 	}
 	for _, v := range design.Verdicts {
 		o.gauge(verdict, truth(v == now), l.Name, v.String())
+	}
+}
+
+func (o *sink) warnings(all []warn.Watched) {
+	for i := range all {
+		w := &all[i]
+		kind := string(w.Kind)
+		o.gauge(warnActive, truth(w.Active), w.Subject, kind)
+		o.gauge(warnMarked, truth(w.Acknowledged), w.Subject, kind)
+		o.gauge(warnShelf, truth(w.Shelved), w.Subject, kind)
 	}
 }
 

@@ -1,5 +1,6 @@
 // Package relay makes of snapshots what the agent publishes: one JSON document a load,
-// which configs/result.schema.json describes.
+// which configs/result.schema.json describes, and one a warning, which
+// configs/warning.schema.json does.
 //
 // A document is told when it differs from the one before in more than its time, not more
 // often than it is allowed to, and never one whose event time is older than what was told.
@@ -25,8 +26,11 @@ type Result struct {
 type Relay struct {
 	site   string
 	topics []string
-	every  time.Duration
-	told   []told
+	// warnings is what the topics of warnings begin with.
+	warnings string
+	every    time.Duration
+	told     []told
+	warned   map[string]warned // by topic
 }
 
 type told struct {
@@ -38,7 +42,8 @@ type told struct {
 // New returns a relay of the loads of a site, in the order of its snapshots. Topics begin
 // with prefix; a load is told at most once in the time every.
 func New(site, prefix string, loads []string, every time.Duration) *Relay {
-	r := &Relay{site: site, every: every, told: make([]told, len(loads))}
+	r := &Relay{site: site, every: every, told: make([]told, len(loads)), warned: make(map[string]warned)}
+	r.warnings = prefix + "/warnings/"
 	for _, name := range loads {
 		r.topics = append(r.topics, prefix+"/"+Level(name))
 	}

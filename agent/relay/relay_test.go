@@ -16,6 +16,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/agent/warn"
 	"heatreeve/configs"
 	"heatreeve/ingest/quality"
 )
@@ -170,4 +171,32 @@ func TestSchemaIsOfTheDocument(t *testing.T) {
 	if got := words(s.Properties["quality"].Enum.Values); !slices.Equal(got, words(qualities)) {
 		t.Errorf("qualities %q, want %q", got, qualities)
 	}
+}
+
+// A warning is told at once when it begins, is acknowledged and is over, and otherwise no
+// more often than every; its end stays.
+func TestWarningsAreTold(t *testing.T) {
+	r := relayed(time.Minute)
+	w := warn.Listed{Entry: warn.Entry{Warning: design.Warning{Kind: design.WarnShort, Subject: "hot/water", Begin: base, Since: base, Now: -0.2}, Times: 1}}
+	told := func(at int64, n int, want string) {
+		t.Helper()
+		s := &view.Snapshot{Warnings: warn.Board{All: []warn.Listed{w}}}
+		got, err := r.Warnings(s, time.Unix(0, at), false)
+		if err != nil || len(got) != n {
+			t.Fatalf("%d told, %v; want %d", len(got), err, n)
+		}
+		if n > 0 && (got[0].Topic != "plant/heat/warnings/hot%2Fwater/short" || !strings.Contains(string(got[0].Payload), want)) {
+			t.Errorf("%s %s, want %s", got[0].Topic, got[0].Payload, want)
+		}
+	}
+	told(base, 1, `"state":"unacknowledged","active":true`)
+	told(base+second, 0, "")
+	w.Now = -0.3
+	told(base+2*second, 0, "")
+	told(base+61*second, 1, `"deviation_ratio":-0.3`)
+	w.Mark = &warn.Mark{By: "J. Marsh", Reason: "pump", At: base}
+	told(base+62*second, 1, `"by":"J. Marsh"`)
+	w.Mark, w.End, w.Seen = nil, base+63*second, true
+	told(base+63*second, 1, `"state":"normal","active":false`)
+	told(base+200*second, 0, "")
 }

@@ -10,6 +10,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
+	"heatreeve/agent/warn"
 	"heatreeve/ingest/quality"
 )
 
@@ -23,6 +24,7 @@ type Snapshot struct {
 	Tags  []Tag
 	// ClockSteps counts how often this machine's clock was set while the agent ran.
 	ClockSteps uint64
+	Warnings   warn.Board
 	Broker     Broker     // the main one
 	Brokers    []Broker   // beside it
 	Sparkplug  *Sparkplug // nil where no tag reads a metric

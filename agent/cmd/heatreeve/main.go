@@ -22,6 +22,7 @@ const (
 	exitGood   = 0
 	exitFailed = 1
 	exitWrong  = 2 // wrong usage, or a wrong file
+	exitStands = 3 // a warning stands
 )
 
 func main() {
@@ -45,6 +46,10 @@ var commands = []command{
 	{"report", "--data DIR --from DATE [--to DATE] [--by hour|day|month] [--load NAME] [--demand LENGTH] [--shares] [--format table|csv|json] [--zone NAME] [--site FILE]", "tell the heat of every load by hour, day or month", reportHelp, runReport},
 	{"explain", "LOAD --data DIR [--at TIME] [--zone NAME] [--json]", "tell the working of one figure, line by line", explainHelp, runExplain},
 	{"export", "--data DIR --tag NAME|--load NAME [--by minute|hour] [--from DATE] [--to DATE] [--format csv|json|parquet] [--zone NAME] [--progress]", "give out the readings of a tag, or the minutes or hours of a load", exportHelp, runExport},
+	{"warnings", "--data DIR [--format table|json]", "tell what the agent warns of now", warningsHelp, runWarnings},
+	{"acknowledge", "SUBJECT --data DIR --by NAME --reason TEXT [--kind KIND]", "acknowledge the warnings on a load or exchanger", markHelp, runAcknowledge},
+	{"shelve", "SUBJECT --data DIR --by NAME --reason TEXT [--kind KIND] [--until TIME|--for DURATION|--end]", "shelve warnings on a load or exchanger for a time", markHelp, runShelve},
+	{"events", "--data DIR [--from DATE] [--to DATE] [--kind KIND] [--subject NAME|--load NAME] [--format table|csv|json] [--zone NAME]", "tell what happened beside the accounts", eventsHelp, runEvents},
 	{"salvage", "--data DIR [--into DIR]", "save what can be read of a damaged history to a new one", salvageHelp, runSalvage},
 	{"properties", "FLUID --temperature T[,T2,...] [--pressure P] [--barometer P] [--json] | --list [--json]", "tell the properties of a fluid", fluidHelp, runProperties},
 	{"duty", "FLUID --flow F --from T1 --to T2 [--pressure P] [--outlet-pressure P] [--barometer P] [--meter-at inlet|outlet] [--json]", "work one heat duty, with its working", fluidHelp + dutyHelp, runDuty},
@@ -119,6 +124,8 @@ func status(err error, stderr io.Writer) int {
 	switch {
 	case err == nil, errors.Is(err, flag.ErrHelp):
 		return exitGood
+	case errors.Is(err, errStands):
+		return exitStands
 	case errors.As(err, &faults):
 		fmt.Fprintln(stderr, faults)
 		return exitWrong
@@ -152,5 +159,5 @@ func usage(w io.Writer) {
 	for _, c := range commands {
 		fmt.Fprintf(w, "%s\n        %s\n", c.usageLines("  ", "      "), c.about)
 	}
-	fmt.Fprintf(w, "\n  heatreeve COMMAND --help tells the options of one.\n\nExit status: 0 good, 1 failed, 2 wrong usage or wrong file.\n\n%s\n", agent.Safety)
+	fmt.Fprintf(w, "\n  heatreeve COMMAND --help tells the options of one.\n\nExit status: 0 good, 1 failed, 2 wrong usage or wrong file,\n3 of warnings: one stands.\n\n%s\n", agent.Safety)
 }

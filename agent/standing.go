@@ -1,0 +1,111 @@
+package agent
+
+import (
+	"bytes"
+	"context"
+	"encoding/gob"
+	"encoding/json"
+	"errors"
+	"net/http"
+	"net/url"
+	"time"
+
+	"heatreeve/agent/warn"
+)
+
+const (
+	// warningsPath is where the warnings are that stand.
+	warningsPath = "/warnings"
+	// warningsTime bounds how long one answer may take.
+	warningsTime = 10 * time.Second
+)
+
+// Standing is what a plant's agent warns of now.
+type Standing struct {
+	Site     string          `json:"site"`
+	At       time.Time       `json:"at"` // event time up to which all is accounted for
+	Warnings []warn.Document `json:"warnings"`
+	Shelves  []Shelved       `json:"shelves"`
+}
+
+// Shelved is a shelf, whether or not there is a warning on it.
+type Shelved struct {
+	Subject string `json:"subject"`
+	Kind    string `json:"kind"`
+	warn.MarkDocument
+}
+
+func standingOf(site string, at int64, b *warn.Board, place *time.Location) *Standing {
+	s := &Standing{Site: site, At: time.Unix(0, at).In(place), Warnings: []warn.Document{}, Shelves: []Shelved{}}
+	for _, l := range b.Listed() {
+		s.Warnings = append(s.Warnings, l.Document("", place))
+	}
+	for i := range b.Shelves {
+		f := &b.Shelves[i]
+		s.Shelves = append(s.Shelves, Shelved{f.Subject, string(f.Kind), *f.Document(place)})
+	}
+	return s
+}
+
+// boards tells the warnings that stand while the agent runs.
+type boards struct {
+	run    string
+	health *health
+	zone   *time.Location
+}
+
+func newBoards(r *reports, h *health) *boards { return &boards{r.run, h, r.history.zone} }
+
+func (s *boards) ServeHTTP(w http.ResponseWriter, r *http.Request) {
+	tellRun(w, r, s.run)
+	v := s.health.latest.Load()
+	if v == nil {
+		http.Error(w, "no beat yet", http.StatusServiceUnavailable)
+		return
+	}
+	writeJSON(w, standingOf(v.Site, v.At, &v.Warnings, s.zone))
+}
+
+func writeJSON(w http.ResponseWriter, x any) {
+	w.Header().Set("Content-Type", "application/json")
+	e := json.NewEncoder(w)
+	e.SetEscapeHTML(false)
+	_ = e.Encode(x) // who asked has gone
+}
+
+// Warnings tells what stands by a history: a data folder, or a copy of its file. Where an
+// agent runs on the folder, it is asked.
+func Warnings(ctx context.Context, data string) (s *Standing, err error) {
+	err = reach(data, func(a address) (err error) {
+		s, err = request[Standing](ctx, a, warningsPath, url.Values{}, warningsTime, answerBytes)
+		return err
+	}, func(h history) (err error) {
+		s, err = h.standing(time.Now())
+		return err
+	})
+	if err != nil {
+		return nil, err
+	}
+	return s, nil
+}
+
+// standing reads from the history what stands, by a clock that tells which shelves have ended.
+func (h *history) standing(now time.Time) (*Standing, error) {
+	state, ok, err := h.db.Checkpoint()
+	if err != nil {
+		return nil, err
+	}
+	if !ok {
+		return nil, errors.New("the history holds no account yet")
+	}
+	var s savedAccounts
+	if err := gob.NewDecoder(bytes.NewReader(state)).Decode(&s); err != nil {
+		return nil, err
+	}
+	place := h.zone
+	if place == nil {
+		place = time.UTC
+	}
+	b := s.board(max(now.UnixNano(), h.through()))
+	return standingOf(h.site, h.through(), &b, place), nil
+}
