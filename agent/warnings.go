@@ -28,6 +28,13 @@ func watchedOf(cfg design.Config) (all []warn.Watched) {
 			}
 		}
 	}
+	for i := range cfg.Exchangers {
+		for _, k := range design.Kinds() {
+			if k.OfExchanger() {
+				all = append(all, warn.Watched{Subject: cfg.Exchangers[i].Name, Kind: k})
+			}
+		}
+	}
 	return all
 }
 

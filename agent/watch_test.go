@@ -24,8 +24,8 @@ func TestWatchTellsWhatChanges(t *testing.T) {
 		{0, design.Undecided, "", ""},
 		{time.Second, design.Holding, "", ""},
 		{2 * time.Second, design.Short, "", ""}, // a warning, and told as such
-		{3 * time.Second, design.Blind, "TT-1 is old", `level=WARN msg="load is blind"`},
-		{4 * time.Second, design.Blind, "TT-2 is old", ""}, // too soon
+		{3 * time.Second, design.Blind, "TT-0 is old", `level=WARN msg="load is blind"`},
+		{4 * time.Second, design.Blind, "TT-1 is old", ""}, // too soon
 		{63 * time.Second, design.Blind, "TT-1 is old", `level=WARN msg="load is blind" load=hall verdict=blind reason="TT-1 is old"`},
 		{130 * time.Second, design.Blind, "TT-2 is old", `reason="TT-2 is old"`},
 		{200 * time.Second, design.Undecided, "", `level=INFO msg="load is well again" load=hall verdict=undecided`},
