@@ -3,6 +3,7 @@ package metrics
 import (
 	"fmt"
 	"regexp"
+	"slices"
 	"strings"
 	"testing"
 
@@ -12,6 +13,7 @@ import (
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
+	"heatreeve/agent/warn"
 	"heatreeve/ingest/quality"
 )
 
@@ -326,5 +328,25 @@ func TestNothingBeforeTheFirstSnapshot(t *testing.T) {
 	r := registry(nil, instant)
 	if n, err := testutil.GatherAndCount(r); err != nil || n != 2 {
 		t.Errorf("%d series (%v) before the first snapshot, want build_info and the commit histogram", n, err)
+	}
+}
+
+// Each kind that there can be has its three series, whether or not it stands.
+func TestWarningSeries(t *testing.T) {
+	s := &view.Snapshot{Warnings: warn.Board{Watched: []warn.Watched{{Subject: "hall", Kind: design.WarnShort, Active: true, Shelved: true}, {Subject: "hall", Kind: design.WarnOver}}}}
+	all, err := NewCollector(func() *view.Snapshot { return s }, func() int64 { return 0 }).Gather()
+	if err != nil {
+		t.Fatal(err)
+	}
+	got := make(map[string][]float64)
+	for _, f := range all {
+		for _, m := range f.Metric {
+			got[f.GetName()] = append(got[f.GetName()], m.GetGauge().GetValue())
+		}
+	}
+	for name, want := range map[string][]float64{"active": {1, 0}, "acknowledged": {0, 0}, "shelved": {1, 0}} {
+		if x := got["heatreeve_warning_"+name]; !slices.Equal(x, want) {
+			t.Errorf("%s: %v, want %v", name, x, want)
+		}
 	}
 }
