@@ -16,7 +16,25 @@ func designOf(s *site.Site) design.Config {
 	for i := range s.Loads {
 		cfg.Loads = append(cfg.Loads, targetOf(s, &s.Loads[i]))
 	}
+	for i := range s.Exchangers {
+		x := &s.Exchangers[i]
+		cfg.Exchangers = append(cfg.Exchangers, design.Exchanger{
+			Name: x.Name, Hot: x.Hot, Cold: x.Cold, Model: x.Model, Uncertainty: x.Uncertainty, Calibrated: x.Learned,
+			Loss: x.Loss, Allowance: x.Fouling, Lasting: x.Lasting, FalseWarnings: x.FalseWarnings,
+		})
+		byExchanger(&cfg.Loads[x.Hot], x.HotDesign, s.Loads[x.Hot].Design.Exchanger != "")
+		byExchanger(&cfg.Loads[x.Cold], x.ColdDesign, s.Loads[x.Cold].Design.Exchanger != "")
+	}
 	return cfg
+}
+
+// byExchanger takes the design point of a side of an exchanger where its load has none, and
+// what is expected of it where the exchanger tells.
+func byExchanger(t *design.Target, p site.StreamPoint, tells bool) {
+	t.ByExchanger = tells
+	if t.Point.Flow == 0 {
+		t.Point = design.Point(p)
+	}
 }
 
 func targetOf(s *site.Site, l *site.HeatLoad) design.Target {

@@ -139,6 +139,7 @@ func TestExamplesShowTheKeys(t *testing.T) {
 		"loads.*.stream.dew_point", "loads.*.stream.wet_bulb", "loads.*.stream.humidity_ratio",
 		"fluids.*.moist air.dew point", "fluids.*.moist air.wet bulb", "fluids.*.moist air.humidity ratio", "fluids.*.moist air.pressure",
 		"fluids.*.food.fibre", "fluids.*.flue gas.wet oxygen",
+		"exchangers.*.shells", "exchangers.*.clean", "exchangers.*.learned", "exchangers.*.films.per_kelvin",
 		"loads.*.design.exchanger", "loads.*.design.baseline.against.*.above",
 	}
 	for _, day := range []string{"monday", "tuesday", "wednesday", "thursday", "friday", "saturday", "sunday"} {
@@ -179,7 +180,7 @@ func collect(shown map[string]bool, path string, v any) {
 		below := strings.TrimPrefix(path+"."+key, ".")
 		shown[below] = true
 		switch below {
-		case "brokers", "fluids", "tags", "loads", "loads.*.design.baseline.against":
+		case "brokers", "fluids", "tags", "loads", "exchangers", "loads.*.design.baseline.against":
 			if named, ok := m[key].(map[string]any); ok {
 				for _, v := range named {
 					collect(shown, below+".*", v)

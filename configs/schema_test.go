@@ -160,7 +160,7 @@ func TestWrongFiles(t *testing.T) {
 			t.Errorf("%s: the reader answers %v", path, err)
 		}
 	}
-	for _, name := range []string{"alive", "basis", "broker", "corrections", "counters", "credentials", "fluids", "list", "payloads", "screens", "signals", "tags", "vessels"} {
+	for _, name := range []string{"alive", "basis", "broker", "corrections", "counters", "credentials", "exchangers", "fluids", "list", "payloads", "screens", "signals", "tags", "vessels"} {
 		if !slices.Contains(refused, name) {
 			t.Errorf("the schema takes %s.yaml", name)
 		}

@@ -56,6 +56,9 @@ func findCircuits(s *site.Site) ([]circuit, error) {
 			return nil, fmt.Errorf("site %q: the invented plant has no load %q; it has %s", s.Name, l.Name, knownLoads())
 		}
 		c := circuit{habit: h, HeatLoad: l}
+		if l.Design.Exchanger != "" {
+			c.Design.Duty = sideOf(s, len(circuits))
+		}
 		if err := c.designed(); err != nil {
 			return nil, fmt.Errorf("site %q: load %q: %w", s.Name, l.Name, err)
 		}
@@ -67,6 +70,19 @@ func findCircuits(s *site.Site) ([]circuit, error) {
 		}
 	}
 	return circuits, nil
+}
+
+// sideOf is the design duty of a load by its exchanger, W.
+func sideOf(s *site.Site, load int) float64 {
+	for _, x := range s.Exchangers {
+		switch load {
+		case x.Hot:
+			return x.Duty
+		case x.Cold:
+			return x.Duty - x.Loss
+		}
+	}
+	return 0
 }
 
 func habitOf(load string) (habit, bool) {

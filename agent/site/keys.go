@@ -4,7 +4,7 @@ import "slices"
 
 // keys are the keys of each block. A star stands for a name that the file gives.
 var keys = map[string][]string{
-	"": {"site", "timezone", "barometer", "broker", "brokers", "fluids", "tags", "loads", "timing", "history", "publish"},
+	"": {"site", "timezone", "barometer", "broker", "brokers", "fluids", "tags", "loads", "exchangers", "timing", "history", "publish"},
 	"broker": {"url", "client_id", "ca", "certificate", "key", "server_name", "min_tls", "username", "password_file", "password_env",
 		"subscribe", "availability", "queue", "commands", "host_id"},
 	"publish": {"topic", "every", "broker"},
@@ -23,6 +23,10 @@ var keys = map[string][]string{
 	"loads.*.stream.corrections":        {"pump", "hold", "stored"},
 	"loads.*.stream.corrections.stored": {"content", "metal", "over"},
 	"loads.*.vessel":                    {"fluid", "temperature", "pressure", "content", "rigid", "shell", "over", "still", "gives", "takes", "margin", "idle_below"},
+	"exchangers.*": {"hot", "cold", "arrangement", "shells", "design", "clean", "learned", "uncertainty", "films", "loss", "fouling_allowance",
+		"lasting", "false_warnings"},
+	"exchangers.*.design": {"duty", "hot_inlet", "hot_outlet", "cold_inlet", "cold_outlet"},
+	"exchangers.*.films":  {"hot", "cold", "hot_exponent", "cold_exponent", "per_kelvin"},
 	"loads.*.design": {"duty", "table", "week", "baseline", "exchanger", "uncertainty", "allow", "false_warnings", "lasting",
 		"inlet", "outlet", "pressure"},
 	"loads.*.design.table":              {"against", "points"},

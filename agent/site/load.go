@@ -43,7 +43,7 @@ func Parse(name string, text []byte) (*Site, error) {
 		s.blanks(root, "")
 	}
 	if len(s.faults) == 0 {
-		r := &reader{site: &Site{Text: text, Digest: sha256.Sum256(text)}, file: name}
+		r := &reader{site: &Site{Text: text, Digest: sha256.Sum256(text)}, file: name, tellers: make(map[int]value)}
 		r.read(value{scope: s, node: root})
 		if len(s.faults) == 0 {
 			return r.site, nil

@@ -30,6 +30,9 @@ func (r *reader) load(e entry) HeatLoad {
 	if v, ok := o.get("design"); ok {
 		design = v.object("loads.*.design")
 		r.design(design, &l.Design)
+		if v, ok := design.get("exchanger"); ok {
+			r.tellers[len(r.site.Loads)] = v
+		}
 	}
 	if v, ok := o.get("witness"); ok {
 		l.Witness, _ = r.sourceAt(v, theWitness)

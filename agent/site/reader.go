@@ -19,6 +19,7 @@ type reader struct {
 	brokerAt []value                 // where each of the brokers stands in the file
 	fluids   map[string]thermo.Fluid // nil where the declaration is at fault
 	gauge    bool                    // the file has a gauge pressure
+	tellers  map[int]value           // by load, where its design names an exchanger
 }
 
 func (r *reader) read(v value) {
@@ -37,6 +38,8 @@ func (r *reader) read(v value) {
 	r.readTags(o)
 	r.readBesides()
 	r.readLoads(o)
+	r.readExchangers(o)
+	r.readTellers()
 	r.checkTopics()
 	r.publish(o)
 	if r.gauge {

@@ -36,9 +36,11 @@ type Site struct {
 	Fluids    map[string]thermo.Fluid // the declared ones
 	Tags      []Tag                   // in file order, and behind them those of [Liveness]
 	Loads     []HeatLoad              // in file order
-	Timing    Timing
-	History   History
-	Publish   Publish
+	// Exchangers are those of which both streams are loads, in file order.
+	Exchangers []Exchanger
+	Timing     Timing
+	History    History
+	Publish    Publish
 }
 
 // Declared is how many of the tags the file declares; those behind them tell whether a

@@ -32,6 +32,8 @@ const (
 	Count                                      // a number of pulses
 	Resistance                                 // ohm
 	Current                                    // A
+	Conductance                                // W/K, of heat
+	HeatResistance                             // K/W
 )
 
 var dimensions = [...]struct{ name, si string }{
@@ -57,6 +59,8 @@ var dimensions = [...]struct{ name, si string }{
 	Count:                 {"count", "1"},
 	Resistance:            {"resistance", "ohm"},
 	Current:               {"current", "A"},
+	Conductance:           {"heat conductance", "W/K"},
+	HeatResistance:        {"resistance to heat", "K/W"},
 }
 
 func (d Dimension) String() string {

@@ -7,7 +7,7 @@ import "slices"
 var table = slices.Concat(
 	temperatures, differences, pressures, massFlows, volumeFlows, molarFlows, masses, volumes,
 	energies, powers, specificHeats, specificEnthalpies, densities, ratios, durations, sizes, molarMasses,
-	heatCapacities, amounts, counts, resistances, currents,
+	heatCapacities, amounts, counts, resistances, currents, conductances, heatResistances,
 )
 
 var temperatures = rows(Temperature,
@@ -239,4 +239,19 @@ var resistances = rows(Resistance,
 var currents = rows(Current,
 	is("mA", 1e-3, si),
 	is("A", 1, si),
+)
+
+var conductances = rows(Conductance,
+	is("kW/K", 1e3, si, "kW/°C"),
+	is("W/K", 1, si, "W/°C"),
+	is("MW/K", 1e6, si, "MW/°C"),
+	is("Btu/(h °F)", btu/hour*1.8, nist, "Btu_IT/(h °F)", "Btu/h/°F", "Btu/(h F)"),
+	is("kcal/(h K)", 1e3*calIT/hour, nist, "kcal/(h °C)").noting("International Table"),
+)
+
+var heatResistances = rows(HeatResistance,
+	is("K/kW", 1e-3, si, "°C/kW"),
+	is("K/W", 1, si, "°C/W"),
+	is("K/MW", 1e-6, si, "°C/MW"),
+	is("h °F/Btu", hour/btu/1.8, nist, "h °F/Btu_IT", "h F/Btu"),
 )
