@@ -35,7 +35,8 @@ var arrows = map[string][]string{
 	"agent/account": {
 		"agent/loads",
 	},
-	"agent/parquet": {},
+	"agent/learning": {"agent/design/expect", "agent/site", "thermo/unit"},
+	"agent/parquet":  {},
 	"agent/proving": {
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
@@ -50,7 +51,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/learning", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/warn", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }

@@ -45,6 +45,7 @@ var commands = []command{
 	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
 	{"report", "--data DIR --from DATE [--to DATE] [--by hour|day|month] [--load NAME] [--demand LENGTH] [--shares] [--format table|csv|json] [--zone NAME] [--site FILE]", "tell the heat of every load by hour, day or month", reportHelp, runReport},
 	{"explain", "LOAD --data DIR [--at TIME] [--zone NAME] [--json]", "tell the working of one figure, line by line", explainHelp, runExplain},
+	{"learn", "--site FILE --data DIR --load NAME --against TAG[,TAG] [--from DATE] [--to DATE] [--by DURATION] [--habit none|day|week] [--straight] [--zone NAME]", "learn what a load does, and print it for the site file", learnHelp, runLearn},
 	{"export", "--data DIR --tag NAME|--load NAME [--by minute|hour] [--from DATE] [--to DATE] [--format csv|json|parquet] [--zone NAME] [--progress]", "give out the readings of a tag, or the minutes or hours of a load", exportHelp, runExport},
 	{"warnings", "--data DIR [--format table|json]", "tell what the agent warns of now", warningsHelp, runWarnings},
 	{"acknowledge", "SUBJECT --data DIR --by NAME --reason TEXT [--kind KIND]", "acknowledge the warnings on a load or exchanger", markHelp, runAcknowledge},

@@ -44,7 +44,7 @@ func TestExitStatusAndMessages(t *testing.T) {
 		{"demo --help", exitGood, "--speed", ""},
 		{"version", exitGood, "heatreeve development", ""},
 		{"version extra", exitWrong, "", `unexpected "extra"`},
-		{"chekc", exitWrong, "", `unknown command "chekc"; near: check; known: run, check, survey, demo, report, explain, export, warnings, acknowledge, shelve, events, salvage, properties, duty, version, help`},
+		{"chekc", exitWrong, "", `unknown command "chekc"; near: check; known: run, check, survey, demo, report, explain, learn, export, warnings, acknowledge, shelve, events, salvage, properties, duty, version, help`},
 		{"listen", exitWrong, "", `unknown command "listen"; known: run`},
 		{"prop", exitWrong, "", `unknown command "prop"; near: properties; known: run`},
 		{"check", exitWrong, "", "the site file is missing"},

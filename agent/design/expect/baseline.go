@@ -160,7 +160,7 @@ func (b *Baseline) Check() error {
 	}
 	for k := range b.Terms {
 		if t := &b.Terms[k]; !(t.High > t.Low) {
-			return fmt.Errorf("range of tag %q ends at %s, which does not lie above its beginning at %s", t.Tag, t.show(t.High), t.show(t.Low))
+			return fmt.Errorf("range of tag %q ends at %s, which does not lie above its beginning at %s", t.Tag, t.Show(t.High), t.Show(t.Low))
 		}
 	}
 	if n := len(b.Terms); len(b.Correlation) != n*(n-1)/2 {

@@ -73,9 +73,10 @@ type Residual struct {
 	Duty float64
 }
 
-// leastCell is how many samples each hour must have that is told apart, and leastSamples how
+// farOff is how many scaled median absolute deviations are far; leastCell is how many samples each hour must have that is told apart, and leastSamples how
 // many for each number that is learned. Common practice, no source.
 const (
+	farOff       = 3
 	leastCell    = 4
 	leastSamples = 10
 )
@@ -86,15 +87,15 @@ const (
 //
 //	n'·ln(SSR/n) + k·ln n',  n' = n·(1 − ρ)/(1 + ρ)
 //
-// unless options say which, ρ being the autocorrelation of the residuals of the plainest
-// model. The limit is searched for between the tenth and the ninetieth percentile, as in the
+// unless options say which, ρ being the autocorrelation of the residuals of the model that
+// follows the samples most closely: what a plainer one leaves out goes on from hour to hour. The limit is searched for between the tenth and the ninetieth percentile, as in the
 // change-point models of J. K. Kissock, J. S. Haberl and D. E. Claridge (Inverse Modeling
 // Toolkit, ASHRAE RP-1050, 2003).
 //
 // Then samples are left out whose residual is beyond three median absolute deviations, scaled
 // by 1.4826 to a standard deviation, about the median (C. Leys et al., Journal of Experimental
-// Social Psychology 49, 2013): once for the model to be chosen again without them, and once by
-// that model for the fit. It withstands a few outliers, and not a second regime.
+// Social Psychology 49, 2013): once those beyond six, for the model to be chosen again without
+// them, and by that model for the fit. It withstands a few outliers, and not a second regime.
 //
 // The error says that there are too few samples, or that they do not tell the drivers apart.
 func Learn(samples []Sample, o Options) (Baseline, Fit, error) {
@@ -119,12 +120,12 @@ func Learn(samples []Sample, o Options) (Baseline, Fit, error) {
 	if err != nil {
 		return Baseline{}, fit, err
 	}
-	if first := m.within(usable); len(first) >= len(usable)/2 {
+	if first := m.within(usable, 2*farOff); len(first) >= len(usable)/2 {
 		if m, err = choose(first, o); err != nil {
 			return Baseline{}, fit, err
 		}
 	}
-	kept := m.within(usable)
+	kept := m.within(usable, farOff)
 	fit.Excluded = len(usable) - len(kept)
 	if err := enough(kept, o.Scales); err != nil {
 		return Baseline{}, fit, fmt.Errorf("after %d samples were excluded: %w", fit.Excluded, err)
@@ -155,7 +156,7 @@ func enough(samples []Sample, scales []Scale) error {
 	}
 	for k := range scales {
 		if low, high := ends(samples, k); !(high > low) {
-			return fmt.Errorf("tag %q stayed at %s: what does not change tells nothing", scales[k].Tag, scales[k].show(low))
+			return fmt.Errorf("tag %q stayed at %s: what does not change tells nothing", scales[k].Tag, scales[k].Show(low))
 		}
 	}
 	return nil
@@ -179,28 +180,32 @@ type shape struct {
 // choose finds the model to be fitted.
 func choose(samples []Sample, o Options) (best *model, err error) {
 	plain := shape{habit: o.Habit}
+	habits := []Habit{o.Habit}
 	if o.Habit == AnyHabit {
-		plain.habit = NoHabit
-	}
-	if best, err = solve(samples, plain, o); err != nil {
-		return nil, err
-	}
-	rho := max(0, best.lag)
-	counts := (1 - rho) / (1 + rho)
-	habits := []Habit{plain.habit}
-	if o.Habit == AnyHabit {
-		habits = []Habit{NoHabit, DayHabit, WeekHabit}
+		plain.habit, habits = NoHabit, []Habit{NoHabit, DayHabit, WeekHabit}
 	}
 	bends := []Bend{Straight, Below, Above}
 	if o.Straight {
 		bends = bends[:1]
 	}
+	if best, err = solve(samples, plain, o); err != nil {
+		return nil, err
+	}
+	all := []*model{best}
+	closest := best
 	for _, h := range habits {
 		for _, b := range bends {
-			m := bent(samples, shape{habit: h, bend: b}, o)
-			if m != nil && m.criterion(counts) < best.criterion(counts) {
-				best = m
+			if m := bent(samples, shape{habit: h, bend: b}, o); m != nil {
+				if all = append(all, m); m.ssr < closest.ssr {
+					closest = m
+				}
 			}
+		}
+	}
+	rho := max(0, closest.lag)
+	for _, m := range all {
+		if counts := (1 - rho) / (1 + rho); m.criterion(counts) < best.criterion(counts) {
+			best = m
 		}
 	}
 	return best, nil

@@ -17,7 +17,8 @@ func (s *Scale) shown(x float64) float64 {
 	return (x - s.Offset) / s.Factor
 }
 
-func (s *Scale) show(x float64) string { return fmt.Sprintf("%.4g %s", s.shown(x), s.Unit) }
+// Show writes a value in the unit of the tag.
+func (s *Scale) Show(x float64) string { return fmt.Sprintf("%.4g %s", s.shown(x), s.Unit) }
 
 // value is the driver with the given index; why says that there is none.
 func (s *Scale) value(c *Conditions, driver int) (x float64, why string) {
@@ -32,5 +33,5 @@ func (s *Scale) value(c *Conditions, driver int) (x float64, why string) {
 
 // outside says that x is none between low and high.
 func (s *Scale) outside(x, low, high float64) string {
-	return fmt.Sprintf("tag %q is at %s, and what is expected is known from %s to %s", s.Tag, s.show(x), s.show(low), s.show(high))
+	return fmt.Sprintf("tag %q is at %s, and what is expected is known from %s to %s", s.Tag, s.Show(x), s.Show(low), s.Show(high))
 }

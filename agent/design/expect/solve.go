@@ -195,8 +195,9 @@ func lag(samples []Sample, rest []float64, span int64) float64 {
 	return min(0.99, max(-0.99, product/square))
 }
 
-// within are the samples whose residuals are no outliers.
-func (m *model) within(samples []Sample) (kept []Sample) {
+// within are the samples whose residuals are no outliers: not so many scaled median absolute
+// deviations from the median.
+func (m *model) within(samples []Sample, far float64) (kept []Sample) {
 	rest, apart := make([]float64, len(samples)), make([]float64, len(samples))
 	for i := range samples {
 		rest[i] = m.residualOf(&samples[i])
@@ -205,7 +206,7 @@ func (m *model) within(samples []Sample) (kept []Sample) {
 	for i, x := range rest {
 		apart[i] = math.Abs(x - middle)
 	}
-	most := 3 * 1.4826 * median(apart)
+	most := far * 1.4826 * median(apart)
 	for i := range samples {
 		if apart[i] <= most {
 			kept = append(kept, samples[i])

@@ -83,7 +83,7 @@ func (t *Table) Check() error {
 		}
 		for i := 1; i < len(a.At); i++ {
 			if !(a.At[i] > a.At[i-1]) {
-				return fmt.Errorf("%s does not lie above %s: the places of tag %q must rise", a.show(a.At[i]), a.show(a.At[i-1]), a.Tag)
+				return fmt.Errorf("%s does not lie above %s: the places of tag %q must rise", a.Show(a.At[i]), a.Show(a.At[i-1]), a.Tag)
 			}
 		}
 	}
