@@ -36,6 +36,10 @@ func (a *Agent) publish(r *rhythm) {
 	for i := range s.Loads {
 		v.Loads[i] = a.loadView(l, i, s.Loads[i])
 	}
+	for i := range a.site.Exchangers {
+		x := &a.site.Exchangers[i]
+		v.Exchangers = append(v.Exchangers, view.Exchanger{Name: x.Name, Allowance: x.Fouling, Standing: l.accounts.verdicts.Exchanger(i)})
+	}
 	for _, f := range r.intakes[1:] {
 		v.Brokers = append(v.Brokers, brokerView(f))
 	}

@@ -124,6 +124,7 @@ func (c *Collector) Gather() ([]*dto.MetricFamily, error) {
 		out.load(&s.Loads[i], v)
 		out.means(s, i, now)
 	}
+	out.exchangers(s)
 	out.warnings(s.Warnings.Watched)
 	for i := range s.Tags {
 		out.tag(&s.Tags[i])

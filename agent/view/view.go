@@ -22,6 +22,8 @@ type Snapshot struct {
 	Slack int64 // how long a reading may be on its way into a figure in good order, ns
 	Loads []Load
 	Tags  []Tag
+	// Exchangers are those of the site, of which both streams are loads.
+	Exchangers []Exchanger
 	// ClockSteps counts how often this machine's clock was set while the agent ran.
 	ClockSteps uint64
 	Warnings   warn.Board
@@ -44,6 +46,34 @@ type Load struct {
 	// Grounds are what the verdict rests on.
 	Grounds design.Grounds
 	Witness *Witness // nil of a load without one
+}
+
+// Exchanger is what an exchanger did in its last window of minutes.
+type Exchanger struct {
+	Name      string
+	Allowance float64 // of the fouling resistance, K/W; 0 for none
+	design.Standing
+}
+
+// longestWindow is how long the last window of an exchanger may be shown: after that it is
+// another time. Common practice, no source.
+const longestWindow = int64(time.Hour)
+
+// Told returns what exchanger i did, as it may be shown at event time; false where its last
+// window is longer ago than an hour, or there has been none.
+func (s *Snapshot) Told(i int) (*Exchanger, bool) {
+	x := &s.Exchangers[i]
+	return x, x.At > 0 && s.At-x.At <= longestWindow
+}
+
+// Reached tells in how many days the fouling resistance comes to its allowance, by its course,
+// with an interval of about 95 %: late is +Inf where it might as well never. ok is false where
+// there is no allowance, no course yet, or none that leads there.
+func (x *Exchanger) Reached() (days, early, late float64, ok bool) {
+	if x.Allowance == 0 {
+		return 0, 0, 0, false
+	}
+	return x.Course.Reach(x.Allowance)
 }
 
 // Witness is what another meter has counted since midnight by the clock of the site, and what
