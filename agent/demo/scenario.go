@@ -65,10 +65,12 @@ const (
 	inletSwing   = 0.3  // K
 	flowScatter  = 0.003
 	inletScatter = 0.03 // K
+	cleanError   = 0.02 // standard uncertainty of the conductance that the data sheet states
 )
 
 // NewTrial returns a course of the scenario with instruments drawn at random within the
-// accuracies that the site states: a half-width of error is even within it.
+// accuracies that the site states, and with plates whose clean conductance is as near to that
+// of the data sheet: an error is even within its half-width.
 func (p *Plant) NewTrial(s Scenario, seed uint64) (*Trial, error) {
 	t := &Trial{scenario: s, plates: p.exchange.plates, chance: rand.New(rand.NewPCG(seed, noiseKey(0, s.Name)))}
 	for side, i := range p.exchange.sides {
@@ -81,6 +83,7 @@ func (p *Plant) NewTrial(s Scenario, seed uint64) (*Trial, error) {
 		t.liquids[side] = l
 		t.gauges[side] = t.draw(p.site, c)
 	}
+	t.plates.conductance *= 1 + math.Sqrt(3)*cleanError*(2*t.chance.Float64()-1)
 	for i := range t.swings {
 		t.swings[i] = t.chance.NormFloat64()
 	}

@@ -211,32 +211,31 @@ func weightOf(s *exchanger.State) float64 {
 	return u[1] * u[1] / (u[0]*u[0] + u[1]*u[1])
 }
 
-// expected is the duty of one side at the inlets and flows of a minute, the exchanger clean.
-func (x *Exchange) expected(side int, pair [2]*Minute) expect.Expected {
+// expected is the duty of both sides at the inlets and flows of a minute, the exchanger clean.
+func (x *Exchange) expected(pair [2]*Minute) [2]expect.Expected {
+	unknown := func(why string) [2]expect.Expected { return [2]expect.Expected{{Why: why}, {Why: why}} }
 	for i, m := range pair {
 		if m == nil || !m.Whole {
-			return expect.Expected{Why: "the " + [...]string{"hot", "cold"}[i] + " side of exchanger " + x.of.Name + " has no whole minute"}
+			return unknown("the " + [...]string{"hot", "cold"}[i] + " side of exchanger " + x.of.Name + " has no whole minute")
 		}
 	}
 	s := exchanger.State{Hot: streamOf([]Minute{*pair[0]}), Cold: streamOf([]Minute{*pair[1]})}
 	x.Minute = s
 	clean, err := x.of.Model.Duty(&s)
 	if err != nil {
-		return expect.Expected{Why: "exchanger " + x.of.Name + ": " + err.Error()}
+		return unknown("exchanger " + x.of.Name + ": " + err.Error())
 	}
-	w := weightOf(&s)
-	slopes := x.of.Model.Slopes(&s, w, x.of.Loss)
-	errors := s.Errors(&slopes)
 	own := x.of.Model.Sensitivity(&s) * x.of.Uncertainty
-	e := expect.Expected{Known: true, Duty: clean, Joint: true, Lasting: own, Random: pair[side].Random}
-	if side == 0 {
-		e.Duty += x.of.Loss
-		e.DeviationLasting = math.Hypot(errors.HotBeyond, own)
-	} else {
-		e.DeviationLasting = math.Hypot(errors.ColdBeyond, own)
+	var readings [2]float64
+	if !x.of.Calibrated { // else the same errors made the model
+		readings[0], readings[1] = x.of.Model.BeyondErrors(&s)
 	}
-	if x.of.Calibrated { // the same errors made the model
-		e.DeviationLasting = own
+	var both [2]expect.Expected
+	for side, loss := range [...]float64{x.of.Loss, 0} {
+		both[side] = expect.Expected{
+			Known: true, Duty: clean + loss, Joint: true, Lasting: own, Random: pair[side].Random,
+			DeviationLasting: math.Hypot(readings[side], own),
+		}
 	}
-	return e
+	return both
 }

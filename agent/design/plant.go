@@ -58,9 +58,13 @@ func (p *Plant) Observe(load int, m Minute, hour int) {
 func (p *Plant) settle(x *Exchange, pair [2]*Minute) {
 	steady := true
 	sides := [...]*Judge{p.judges[x.of.Hot], p.judges[x.of.Cold]}
+	var today [2]expect.Expected
+	if sides[0].target.ByExchanger || sides[1].target.ByExchanger {
+		today = x.expected(pair)
+	}
 	for side, j := range sides {
 		if m := pair[side]; m != nil && j.target.ByExchanger {
-			j.Observe(m, x.expected(side, pair))
+			j.Observe(m, today[side])
 			p.changed = j.take(p.changed)
 		}
 		steady = steady && j.Gate.Now.Steady

@@ -76,6 +76,11 @@ func describe(in input, off float64) string {
 	return fmt.Sprintf("%s is %s %s design", in.words, percent(math.Abs(off/in.Design)), side)
 }
 
+// highFlow is from how much on, in logarithms, a flow above design counts in full as a high
+// one, and a difference below it as a low one: flows swing by some per cent all the time.
+// Common practice, no source.
+const highFlow = 0.1
+
 // lowDifference weighs a flow above design that meets a temperature difference below it: by
 // how much of one the other takes back, in logarithms.
 func (e *Evidence) lowDifference() []Cause {
@@ -93,7 +98,7 @@ func (e *Evidence) lowDifference() []Cause {
 		return nil
 	}
 	a, b := math.Log(flow.Value/flow.Design), -math.Log(difference.Value/difference.Design)
-	weight := min(a, b) / max(a, b) * sure(min(more.zeta(), -less.zeta()))
+	weight := min(a, b) / max(a, b) * min(1, min(a, b)/highFlow) * sure(min(more.zeta(), -less.zeta()))
 	if !finite(weight) {
 		return nil
 	}

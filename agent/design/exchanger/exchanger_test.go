@@ -311,3 +311,17 @@ func BenchmarkSlopes(b *testing.B) {
 		model.Slopes(s, 0.5, 0)
 	}
 }
+
+// The uncertainties of what is beyond are those that all slopes give.
+func TestBeyondErrors(t *testing.T) {
+	m := Model{Arrangement: Arrangement{Kind: Counterflow}, Hot: Film{Resistance: 1 / 30e3, Flow: 2, Exponent: 0.8}, Cold: Film{Resistance: 1 / 40e3, Flow: 3, Exponent: 0.8, PerKelvin: 0.004, Temperature: 330}, Wall: 25e-6}
+	s := State{
+		Hot:  Stream{Flow: 1.8, Cp: 4180, Inlet: 361, Outlet: 330, FlowError: 0.02, CpError: 0.003, InletError: 0.2, OutletError: 0.1},
+		Cold: Stream{Flow: 2.9, Cp: 4170, Inlet: 312, Outlet: 331, FlowError: 0.03, InletError: 0.1, OutletError: 0.3},
+	}
+	slopes := m.Slopes(&s, 0.5, 2e3)
+	want := s.Errors(&slopes)
+	if hot, cold := m.BeyondErrors(&s); !(hot > 0) || math.Abs(hot/want.HotBeyond-1) > 1e-9 || math.Abs(cold/want.ColdBeyond-1) > 1e-9 {
+		t.Errorf("%g and %g W, want %g and %g W", hot, cold, want.HotBeyond, want.ColdBeyond)
+	}
+}

@@ -135,6 +135,26 @@ func (m *Model) Tell(s *State, weight, loss float64) Statistics {
 // expected alike. They are central differences over a tenth of the reading's uncertainty, or
 // of a thousandth of a flow, of cp, or of 10 mK where it has none.
 func (m *Model) Slopes(s *State, weight, loss float64) (slopes [Readings]Statistics) {
+	return s.slopes(func(x *State) Statistics { return m.Tell(x, weight, loss) })
+}
+
+// BeyondErrors are the standard uncertainties by the readings of what each side's duty is
+// beyond that of the clean exchanger, W: those of [Model.Slopes] and [State.Errors], without
+// the conductance, at a third of the time.
+func (m *Model) BeyondErrors(s *State) (hot, cold float64) {
+	slopes := s.slopes(func(x *State) (t Statistics) {
+		clean, err := m.Duty(x)
+		if err != nil {
+			clean = math.NaN()
+		}
+		t.HotBeyond, t.ColdBeyond = x.Gives()-clean, x.Takes()-clean
+		return t
+	})
+	errors := s.Errors(&slopes)
+	return errors.HotBeyond, errors.ColdBeyond
+}
+
+func (s *State) slopes(tell func(*State) Statistics) (slopes [Readings]Statistics) {
 	for r := range Readings {
 		x := *s
 		value, u := x.at(r)
@@ -146,9 +166,9 @@ func (m *Model) Slopes(s *State, weight, loss float64) (slopes [Readings]Statist
 			}
 		}
 		*value = was + step
-		above := m.Tell(&x, weight, loss)
+		above := tell(&x)
 		*value = was - step
-		slopes[r] = above.less(m.Tell(&x, weight, loss), 2*step)
+		slopes[r] = above.less(tell(&x), 2*step)
 	}
 	return slopes
 }
