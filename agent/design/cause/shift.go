@@ -34,13 +34,14 @@ func (x *Exchanger) shifted() bool {
 // as the variance of Student's t is.
 func (x *Exchanger) shift(of func(*Day) Estimate) Estimate {
 	var before, now, first []Estimate
+	began := x.began()
 	for i := range x.Days {
 		d := &x.Days[i]
 		switch v := of(d); {
-		case x.Since == 0 || !v.sound():
-		case d.Day < x.Since:
+		case began == 0 || !v.sound():
+		case d.Day < began:
 			before = append(before, v)
-		case d.Day > x.Since:
+		case d.Day > began:
 			now = append(now, v)
 		default:
 			first = append(first, v)
@@ -59,6 +60,39 @@ func (x *Exchanger) shift(of func(*Day) Estimate) Estimate {
 	variance *= float64(n-1) / float64(n-3)
 	return Estimate{true, last - mean, math.Sqrt(variance * (1/float64(n) + 1/float64(len(now))))}
 }
+
+// began is the day on which what is off began. A monitor tells only when it left its dead
+// band, days after a film began to grow; where a ramp fits the days as well as a step and far
+// better than a level, it is the onset of the ramp.
+func (x *Exchanger) began() int64 {
+	var sound []Day
+	for _, d := range x.Days {
+		if d.Conductance.sound() && (len(sound) == 0 || d.Day > sound[len(sound)-1].Day) {
+			sound = append(sound, d)
+		}
+	}
+	n := len(sound)
+	if x.Since == 0 || n <= leastBefore {
+		return x.Since
+	}
+	flat := leftBy(sound, func(int64) float64 { return 0 })
+	step, ramp, onset := math.Inf(1), math.Inf(1), int64(0)
+	for k := leastBefore - 1; k < n-1; k++ {
+		at := sound[k].Day
+		step = min(step, leftBy(sound, func(day int64) float64 { return float64(min(1, max(0, day-at))) }))
+		if left := leftBy(sound, func(day int64) float64 { return float64(max(0, day-at)) }); left < ramp {
+			ramp, onset = left, at+1
+		}
+	}
+	if scatter := max(1, min(step, ramp)/float64(n-3)); ramp <= step && (flat-ramp)/scatter > clearRamp {
+		return min(x.Since, onset)
+	}
+	return x.Since
+}
+
+// clearRamp is by how much a ramp must fit better than a level, as chi-square with its two
+// more parameters, to tell when it began: that of 99.9 %.
+const clearRamp = 13.8
 
 // spread is the mean, and the variance of one: as they scatter, and no less than stated.
 func spread(all []Estimate) (mean, variance float64) {
