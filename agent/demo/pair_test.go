@@ -48,3 +48,27 @@ func TestPlatesAgreeWithTheModel(t *testing.T) {
 		}
 	}
 }
+
+// The site file's exchanger is the one that the plant has.
+func TestTheSiteTellsThePlates(t *testing.T) {
+	s := creamery(t)
+	p := newPlant(t, s, 7)
+	if len(s.Exchangers) != 1 {
+		t.Fatalf("%d exchangers, want 1", len(s.Exchangers))
+	}
+	got, want := s.Exchangers[0], p.exchange.model()
+	near := func(name string, a, b, within float64) {
+		t.Helper()
+		if !(math.Abs(a/b-1) <= within) {
+			t.Errorf("%s: the site tells %g, the plates have %g", name, a, b)
+		}
+	}
+	near("loss", got.Loss, p.exchange.loss, 1e-9)
+	near("hot film", got.Model.Hot.Resistance, want.Hot.Resistance, 0.005)
+	near("cold film", got.Model.Cold.Resistance, want.Cold.Resistance, 0.005)
+	near("wall", got.Model.Wall, want.Wall, 0.005)
+	near("hot flow", got.Model.Hot.Flow, want.Hot.Flow, 0.005)
+	near("cold flow", got.Model.Cold.Flow, want.Cold.Flow, 0.005)
+	near("hot exponent", got.Model.Hot.Exponent, want.Hot.Exponent, 1e-9)
+	near("cold exponent", got.Model.Cold.Exponent, want.Cold.Exponent, 1e-9)
+}

@@ -351,8 +351,9 @@ func TestWrongSitesAreRefused(t *testing.T) {
 		"tag read twice":     {func(s *site.Site) { s.Loads[1].Stream.Flow = s.Loads[0].Stream.Flow }, `"FT-201" is read twice`},
 		"spare tag":          {func(s *site.Site) { s.Tags = append(s.Tags, site.Tag{Name: "TT-999", Topic: "x"}) }, `"TT-999" is read by no load`},
 		"topic twice":        {func(s *site.Site) { s.Tags[1].Topic = s.Tags[0].Topic }, "share the topic"},
-		"takes too much":     {func(s *site.Site) { s.Loads[3].Design.Duty = 650e3 }, "more by design"},
-		"warmer than hot":    {func(s *site.Site) { s.Loads[3].Design.Outlet = 410 }, "no heat passes"},
+		"warmer than hot": {func(s *site.Site) {
+			s.Loads[slices.IndexFunc(s.Loads, func(l site.HeatLoad) bool { return l.Name == coldLoad })].Design.Outlet = 410
+		}, "no heat passes"},
 		"stamp format":       {func(s *site.Site) { s.Tags[1].TimeFormat = "rfc3339" }, "stamps in ms"},
 		"state out of range": {func(s *site.Site) { s.Loads[0].Design.Inlet = 500 }, `hot-water": inlet`},
 	} {

@@ -42,13 +42,14 @@ func TestPlatesOffDesign(t *testing.T) {
 func TestTheExchangerKeepsItsDesign(t *testing.T) {
 	s := creamery(t)
 	p := newPlant(t, s, 7)
-	hot, milk := s.Loads[0].Design, s.Loads[3].Design
 	x := p.exchange
-	heat, outlets, err := x.passed(x.streams(&p.circuits[0], &p.circuits[3], x.flows), 0)
+	hot, milk := s.Loads[x.sides[hotSide]].Design, s.Loads[x.sides[coldSide]].Design
+	hot.Duty, milk.Duty = s.Exchangers[0].Duty, s.Exchangers[0].Duty-s.Exchangers[0].Loss
+	heat, outlets, err := x.passed(x.streams(&p.circuits[x.sides[hotSide]], &p.circuits[x.sides[coldSide]], x.flows), 0)
 	if err != nil || math.Abs(heat/milk.Duty-1) > 1e-9 || math.Abs(outlets[0]-hot.Outlet) > 1e-6 || math.Abs(outlets[1]-milk.Outlet) > 1e-6 {
 		t.Errorf("at the design flows %g W and outlets %v, %v, want %g W, %g and %g K", heat, outlets, err, milk.Duty, hot.Outlet, milk.Outlet)
 	}
-	if heat, _, err = x.passed(x.streams(&p.circuits[0], &p.circuits[3], x.flows), x.film); err != nil || math.Abs((heat+x.loss)/hot.Duty-(1-hot.Allow)) > 1e-9 {
+	if heat, _, err = x.passed(x.streams(&p.circuits[x.sides[hotSide]], &p.circuits[x.sides[coldSide]], x.flows), x.film); err != nil || math.Abs((heat+x.loss)/hot.Duty-(1-hot.Allow)) > 1e-9 {
 		t.Errorf("with the film %g W and the loss, %v, want the allowance less than %g W", heat, err, hot.Duty)
 	}
 	for at := time.Duration(0); at < dayLength; at += 10 * time.Minute {
