@@ -2,6 +2,7 @@ package agent
 
 import (
 	"math"
+	"slices"
 	"time"
 
 	"heatreeve/agent/design"
@@ -96,7 +97,7 @@ func minuteOf(m *loads.Minute) design.Minute {
 		Random:      random,
 		Flow:        m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet,
 		Counted: m.Witness, Served: m.Compared, Latent: m.Latent > 0,
-		Drivers: m.Drivers[:],
+		Drivers: slices.Clone(m.Drivers[:]), // m is the engine's, and of another minute soon
 	}
 	if m.By != "" {
 		x.Doubt = working.Doubted(m.By, m.Mark)

@@ -33,7 +33,9 @@ var replaySpans = [...]int64{leastReplay, 6 * leastReplay, 24 * leastReplay, 7 *
 type replay struct {
 	db       *store.Store
 	site     *site.Site
-	load     int // index into site.Loads
+	load     int   // index into site.Loads
+	loads    []int // those of cfg likewise: that load, and the other side of its exchanger
+	design   design.Config
 	cfg      loads.Config
 	tags     []int // index into site.Tags of each tag of cfg
 	readings []loads.Reading
@@ -44,22 +46,53 @@ type replay struct {
 func newReplay(db *store.Store, s *site.Site, load int) *replay {
 	r := &replay{db: db, site: s, load: load}
 	all := plantOf(s)
-	r.cfg = loads.Config{Grid: all.Grid, Bridge: all.Bridge, Loads: []loads.Load{all.Loads[load]}}
-	l := &r.cfg.Loads[0]
+	r.cfg = loads.Config{Grid: all.Grid, Bridge: all.Bridge}
+	r.design, r.loads = designBeside(s, load)
+	for _, i := range r.loads {
+		r.cfg.Loads = append(r.cfg.Loads, r.own(all.Loads[i], all.Tags))
+	}
+	return r
+}
+
+// own returns a load with the tags of the replay.
+func (r *replay) own(l loads.Load, all []loads.Tag) loads.Load {
 	if l.Vessel != nil {
 		v := *l.Vessel
 		l.Vessel = &v
 	}
-	for _, src := range sourcesOf(l) {
+	for _, src := range sourcesOf(&l) {
 		if src.Tag >= 0 {
-			src.Tag = r.take(all.Tags, src.Tag)
+			src.Tag = r.take(all, src.Tag)
 		}
 	}
 	l.Drivers = slices.Clone(l.Drivers)
 	for i, src := range l.Drivers {
-		l.Drivers[i].Tag = r.take(all.Tags, src.Tag)
+		l.Drivers[i].Tag = r.take(all, src.Tag)
 	}
-	return r
+	return l
+}
+
+// designBeside is the design of one load alone, or with the other side of its exchanger, and
+// which loads of the site these are: that load first.
+func designBeside(s *site.Site, load int) (cfg design.Config, of []int) {
+	all := designOf(s)
+	of = []int{load}
+	for _, x := range all.Exchangers {
+		if x.Hot != load && x.Cold != load {
+			continue
+		}
+		of = append(of, x.Hot+x.Cold-load)
+		if x.Hot == load {
+			x.Hot, x.Cold = 0, 1
+		} else {
+			x.Hot, x.Cold = 1, 0
+		}
+		cfg.Exchangers = append(cfg.Exchangers, x)
+	}
+	for _, i := range of {
+		cfg.Loads = append(cfg.Loads, all.Loads[i])
+	}
+	return cfg, of
 }
 
 // take adds a tag, with that of its source's life and the sensors beside it, and returns its
@@ -185,7 +218,7 @@ func (r *replay) of(ids map[string]uint32, tag int, from, g int64) (found []load
 
 // run puts all through, and returns what the figure at the grid point g was worked from.
 func (r *replay) run(ctx context.Context, g int64) (x working.Subject, err error) {
-	a, err := newAccounts(r.cfg, design.Config{Loads: designOf(r.site).Loads[r.load : r.load+1]}, r.site.Digest, r.site.Zone)
+	a, err := newAccounts(r.cfg, r.design, r.site.Digest, r.site.Zone)
 	if err != nil {
 		return x, err
 	}

@@ -109,6 +109,14 @@ func TestVerdictsAreTheSame(t *testing.T) {
 				t.Errorf("seed %d, load %q: another state of the verdict", seed, name)
 			}
 		}
+		for name, x := range want.Exchanges {
+			if other := got.Exchanges[name]; kept(t, other) != kept(t, x) {
+				t.Errorf("seed %d, exchanger %q: another state", seed, name)
+			}
+		}
+		if len(want.Exchanges) == 0 {
+			t.Error("the plant has no exchanger to compare")
+		}
 		if !reflect.DeepEqual(told, warnings) {
 			t.Errorf("seed %d: warnings\n%+v\nwant\n%+v", seed, told, warnings)
 		}
