@@ -217,6 +217,9 @@ func notNegative(v value, d unit.Dimension) float64 {
 func (r *reader) design(o object, d *Design) {
 	r.expectation(o, d)
 	o.setDuration("lasting", &d.Lasting, time.Second, day, "1 s to 1 d")
+	if b := d.Baseline; b != nil && b.Span < d.Lasting {
+		o.has["baseline"].fault("was learned from samples of %v, and a deviation must last %v: learn with samples that are as long", b.Span, d.Lasting)
+	}
 	if v, ok := o.get("inlet"); ok {
 		d.Inlet = r.constant(v, unit.Temperature)
 	}

@@ -52,16 +52,17 @@ func (t *Term) z(x float64) float64 {
 // With a residual s and n samples, of which n' = n·(1 − ρ)/(1 + ρ) count where successive
 // residuals have the correlation ρ, the standard deviation of a new sample about it is
 //
-//	√(s²·(1 + 1/m) + Σᵢ Σⱼ dᵢ·dⱼ·uᵢ·uⱼ·rᵢⱼ),  d = z − Centre,
+//	√(s²·(1 + 1/n' + 1/m) + Σᵢ Σⱼ dᵢ·dⱼ·uᵢ·uⱼ·rᵢⱼ),  d = z − Centre,
 //
 // that is s·√(1 + xᵀ(XᵀX)⁻¹x) of a centred regression (N. R. Draper and H. Smith, Applied
-// Regression Analysis, 3rd ed., 1998, 3.1), with m = n', or where there are Hours the
-// least of what counts in one of them. It is multiplied by half of Student's t for 95.45 %, so that twice
+// Regression Analysis, 3rd ed., 1998, 3.1). Only where there are Hours there is 1/m, of the hour
+// that has fewest samples, which are a day apart. It is multiplied by half of Student's t for 95.45 %, so that twice
 // of it is the prediction interval.
 //
-// What of the variance of the residuals carries on from one sample to the next, ρ·s², lasts,
-// and so does what the coefficients leave open. The rest averages out over samples, as white
-// noise of minutes would. The errors of the instruments that last are in the baseline as in
+// What the coefficients leave open lasts. The residual of a sample is in the mean of any window
+// that is no longer; a longer one would claim too little of it where one tells the next, and
+// is not to be judged by this. One that is shorter claims more, as of white noise of minutes.
+// The errors of the instruments that last are in the baseline as in
 // what is measured, and cancel. The limit of a bend is taken as it stands.
 type Baseline struct {
 	Duty        float64 // at the centres, W
@@ -78,8 +79,7 @@ type Baseline struct {
 // At works the baseline. It is not known where a driver has no value, or lies outside the
 // range that was learned by more than a twentieth of it.
 func (b Baseline) At(c Conditions) Expected {
-	duty, open := b.Duty, 1/b.count(b.Cell)
-	open *= b.Residual * b.Residual
+	duty, open := b.Duty, b.Residual*b.Residual/b.count(float64(b.Samples))
 	var d [3]float64
 	for k := range b.Terms {
 		t := &b.Terms[k]
@@ -99,13 +99,14 @@ func (b Baseline) At(c Conditions) Expected {
 			return Expected{Why: fmt.Sprintf("hour %d is none of the week", c.Hour)}
 		}
 		duty += b.Hours[c.Hour]
+		open += b.Residual * b.Residual / float64(b.Cell)
 	}
 	open += b.spread(d)
-	wide, rho := b.widening(), max(0, b.Lag)
-	lasting := wide * math.Sqrt(open+rho*b.Residual*b.Residual)
+	wide := b.widening()
+	lasting := wide * math.Sqrt(open)
 	return Expected{
 		Known: true, Duty: duty, Lasting: lasting, Joint: true, DeviationLasting: lasting,
-		Random: wide * wide * (1 - rho) * b.Residual * b.Residual * b.Span,
+		Random: wide * wide * b.Residual * b.Residual * b.Span,
 	}
 }
 
@@ -128,18 +129,18 @@ func (b *Baseline) spread(d [3]float64) float64 {
 }
 
 // count is how many of n samples count.
-func (b *Baseline) count(n int) float64 {
+func (b *Baseline) count(n float64) float64 {
 	rho := max(0, b.Lag)
-	return float64(n) * (1 - rho) / (1 + rho)
+	return n * (1 - rho) / (1 + rho)
 }
 
 // widening is half of Student's t for 95.45 %.
 func (b *Baseline) widening() float64 {
-	left := b.count(b.Samples) - float64(1+len(b.Terms))
+	left := float64(b.Samples - 1 - len(b.Terms))
 	if len(b.Hours) > 0 {
-		left -= float64(b.Samples) / float64(max(1, b.Cell))
+		left -= float64(b.Samples) / float64(b.Cell)
 	}
-	t := distuv.StudentsT{Sigma: 1, Nu: max(1, left)}
+	t := distuv.StudentsT{Sigma: 1, Nu: max(1, b.count(left))}
 	return t.Quantile(0.97725) / 2
 }
 

@@ -155,19 +155,24 @@ func TestIntervalHolds(t *testing.T) {
 	near(t, "share inside the interval", float64(inside)/float64(all), 0.9545, 0.012)
 }
 
-// Of what persists from hour to hour the mean of ten minutes keeps all, and of the rest what
-// six windows an hour have.
-func TestResidualsLastByTheirCorrelation(t *testing.T) {
-	b := Baseline{Duty: 1e5, Terms: []Term{{Scale: outdoor, Low: 260, High: 280, Centre: 270, Slope: -1e3}}, Residual: 1e3, Samples: 1e7, Cell: 1e7, Span: 60}
-	for rho, want := range map[float64][2]float64{0: {0, 6e7}, 0.36: {600, 0.64 * 6e7}, -0.5: {0, 6e7}} {
-		b.Lag = rho
+// A window of an hour has all of an hourly residual, whether or not one tells the next, and
+// what the coefficients leave open lasts: of n = 16 samples with ρ = 0.6 four count.
+func TestWhatLastsOfABaseline(t *testing.T) {
+	b := Baseline{Duty: 1e5, Terms: []Term{{Scale: outdoor, Low: 260, High: 280, Centre: 270, Slope: -1e3, Error: 30}}, Residual: 1e3, Span: 60}
+	for rho, want := range map[float64]float64{0: 250, 0.6: 500, -0.5: 250} {
+		b.Samples, b.Cell, b.Lag = 16, 16, rho
+		wide := b.widening()
 		e := b.At(Conditions{Drivers: []float64{270}})
 		if !e.Joint {
 			t.Fatal("a baseline is of the same instruments, and does not say so")
 		}
-		near(t, "what lasts", e.DeviationLasting, want[0], 1)
-		near(t, "what does not", e.Random, want[1], 1e4)
+		near(t, "what lasts", e.DeviationLasting, wide*want, 1e-9)
+		near(t, "what does not, in an hour", math.Sqrt(e.Random/60), wide*1e3, 1e-9)
+		cold := b.At(Conditions{Drivers: []float64{265}})
+		near(t, "what lasts five kelvins on", cold.DeviationLasting, wide*math.Hypot(want, 150), 1e-9)
 	}
+	b.Samples, b.Lag = 17, 0 // Student's t for 95.45 % and 15 degrees of freedom is 2.18: JCGM 100:2008, table G.2
+	near(t, "half of Student's t", b.widening(), 2.181/2, 1e-3)
 }
 
 func TestBaselineRefusesWhatItDidNotLearn(t *testing.T) {

@@ -85,10 +85,11 @@ const (
 // their hours. Of the habits, and of the first driver with and without a limit, it takes the
 // model with the least information criterion of Schwarz (Annals of Statistics 6, 1978),
 //
-//	n'·ln(SSR/n) + k·ln n',  n' = n·(1 − ρ)/(1 + ρ)
+//	n·ln(SSR·(1 − ρ²)/n) + k·ln n
 //
-// unless options say which, ρ being the autocorrelation of the residuals of the model that
-// follows the samples most closely: what a plainer one leaves out goes on from hour to hour. The limit is searched for between the tenth and the ninetieth percentile, as in the
+// unless options say which, ρ being the autocorrelation of its residuals, whose innovations
+// have the variance SSR·(1 − ρ²)/n: that is the criterion with errors of a first-order
+// autoregression. The limit is searched for between the tenth and the ninetieth percentile, as in the
 // change-point models of J. K. Kissock, J. S. Haberl and D. E. Claridge (Inverse Modeling
 // Toolkit, ASHRAE RP-1050, 2003).
 //
@@ -191,21 +192,11 @@ func choose(samples []Sample, o Options) (best *model, err error) {
 	if best, err = solve(samples, plain, o); err != nil {
 		return nil, err
 	}
-	all := []*model{best}
-	closest := best
 	for _, h := range habits {
 		for _, b := range bends {
-			if m := bent(samples, shape{habit: h, bend: b}, o); m != nil {
-				if all = append(all, m); m.ssr < closest.ssr {
-					closest = m
-				}
+			if m := bent(samples, shape{habit: h, bend: b}, o); m != nil && m.criterion() < best.criterion() {
+				best = m
 			}
-		}
-	}
-	rho := max(0, closest.lag)
-	for _, m := range all {
-		if counts := (1 - rho) / (1 + rho); m.criterion(counts) < best.criterion(counts) {
-			best = m
 		}
 	}
 	return best, nil

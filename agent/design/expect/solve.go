@@ -41,9 +41,9 @@ func (m *model) unknowns() int {
 	return k
 }
 
-func (m *model) criterion(counts float64) float64 {
-	n := float64(len(m.rest))
-	return n*counts*math.Log(m.ssr/n) + float64(m.unknowns())*math.Log(n*counts)
+func (m *model) criterion() float64 {
+	n, rho := float64(len(m.rest)), max(0, m.lag)
+	return n*math.Log(m.ssr*(1-rho*rho)/n) + float64(m.unknowns())*math.Log(n)
 }
 
 // worst is the largest condition number of the scaled regressors: beyond it they are one.
@@ -269,7 +269,7 @@ func (m *model) baseline(samples []Sample, o Options) Baseline {
 			b.Cell = min(b.Cell, c.n)
 		}
 	}
-	inflate := math.Sqrt(n / b.count(len(samples)))
+	inflate := math.Sqrt(n / b.count(n))
 	for k := range b.Terms {
 		t := &b.Terms[k]
 		t.Low, t.High = ends(samples, k)
