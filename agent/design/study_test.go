@@ -123,11 +123,12 @@ type seen struct {
 //
 // Building 58 is heated by day and not by night, and gives 20 kW to 100 kW more than expected from 13
 // December on; at the end of 22 December it goes into its holiday at 50 kW by day, which is plain to
-// the eye. Neither is told: of a step of four residuals the scatter, which is taken from the same windows, and
-// inflated by their correlation, grows with the step.
+// the eye. Neither is told: the sums fall back each night, in which nothing is missed, and the
+// scatter, which is taken from the same windows and inflated by their correlation, grows from
+// 1.2 to 2.2 of the mean duty within three days of the step.
 //
 // Building 105 has a sensor that fails from 7 to 16 March, with a duty below zero; it gives 200 kW too
-// much from then on. Neither is told, for the same reason.
+// much from then on. Neither is told: the scatter grows from 1.1 to 3.1 within a day.
 func TestBaselinesOfRealLoops(t *testing.T) {
 	for _, tt := range []struct {
 		file     string
