@@ -92,59 +92,91 @@ func (a Arrangement) Effectiveness(ntu, c float64, hotIsMin bool) float64 {
 	case Crossflow:
 		return unmixed(ntu, c)
 	}
-	if (a.Kind == HotMixed) != hotIsMin { // the stream of the greater rate is mixed
+	if a.maxMixed(hotIsMin) {
 		return -math.Expm1(c*math.Expm1(-ntu)) / c
 	}
 	return -math.Expm1(math.Expm1(-c*ntu) / c)
 }
 
+// maxMixed tells of crossflow with one stream mixed whether that is the stream of the greater
+// capacity rate.
+func (a Arrangement) maxMixed(hotIsMin bool) bool { return (a.Kind == HotMixed) != hotIsMin }
+
+// counter is ε = (1 − E)/(1 − C·E), E = exp(−NTU·(1 − C)), with numerator and denominator
+// divided by 1 − C: so it has no pole at C = 1, where it is NTU/(1 + NTU), and loses no digits
+// near it.
 func counter(ntu, c float64) float64 {
-	if 1-c < 1e-9 {
-		return ntu / (1 + ntu)
+	m := ntu
+	if d := 1 - c; d > 0 {
+		m = -math.Expm1(-ntu*d) / d
 	}
-	e := math.Exp(-ntu * (1 - c))
-	return (1 - e) / (1 - c*e)
+	return m / (1 + c*m)
 }
 
 // oneShell is ε of one shell with an even number of tube passes.
 func oneShell(ntu, c float64) float64 {
 	g := math.Hypot(1, c)
-	e := math.Exp(-ntu * g)
-	return 2 / (1 + c + g*(1+e)/(1-e))
+	return 2 / (1 + c + g/math.Tanh(ntu*g/2))
 }
 
-// inSeries is ε of n shells in series that have eps each.
+// inSeries is ε of n shells in series that have eps each: (z − 1)/(z − C), z = [(1 − ε₁·C)/(1
+// − ε₁)]ⁿ. Divided by 1 − C as well, it is q/(1 + q), q = (z − 1)/(1 − C).
 func inSeries(eps, c float64, n int) float64 {
-	if n == 1 {
-		return eps
+	d, s := 1-c, eps/(1-eps)
+	q := float64(n) * s
+	if d > 0 {
+		q = math.Expm1(float64(n)*math.Log1p(s*d)) / d
 	}
-	if 1-c < 1e-9 {
-		return float64(n) * eps / (1 + float64(n-1)*eps)
+	if math.IsInf(q, 1) {
+		return 1
 	}
-	z := math.Pow((1-eps*c)/(1-eps), float64(n))
-	return (z - 1) / (z - c)
+	return q / (1 + q)
 }
+
+// farNTU is beyond what any exchanger has.
+const farNTU = 500
 
 // unmixed is ε of crossflow with both streams unmixed, exactly, by the series of J. L. Mason
 // (Proc. 2nd US National Congress of Applied Mechanics, 1955):
 //
 //	ε = 1/(C·NTU)·Σ P(n, NTU)·P(n, C·NTU),  P(n, x) = 1 − e⁻ˣ·Σ_{m≤n} xᵐ/m!
+//
+// That is the mean of the lesser of two Poisson numbers, over C·NTU; beyond farNTU it is by
+// their normal law, where the two differ by less than 3e-6.
 func unmixed(ntu, c float64) float64 {
+	if ntu > farNTU {
+		return normalLesser(ntu, c*ntu) / (c * ntu)
+	}
+	eps, _ := mason(ntu, c)
+	return eps
+}
+
+// mason is the series with its derivative by NTU.
+func mason(ntu, c float64) (eps, slope float64) {
 	x, y := ntu, c*ntu
-	tx, ty := math.Exp(-x), math.Exp(-y)
+	tx, ty := math.Exp(-x), math.Exp(-y) // e⁻ˣ·xⁿ/n!, the derivative of P(n, x)
 	px, py := -math.Expm1(-x), -math.Expm1(-y)
-	var sum float64
-	for n := 1; n < 2000; n++ {
+	var sum, rise float64
+	for n := 1.0; ; n++ {
 		s := px * py
 		sum += s
-		if s < 1e-16*sum {
-			break
+		rise += tx*py + c*px*ty
+		if n > y && s <= 1e-16*sum {
+			return sum / y, (rise - sum/x) / y
 		}
-		tx *= x / float64(n)
-		ty *= y / float64(n)
+		tx *= x / n
+		ty *= y / n
 		px, py = max(0, px-tx), max(0, py-ty)
 	}
-	return sum / y
+}
+
+// normalLesser is the mean of the lesser of two independent normal numbers whose means a ≥ b
+// are their variances too (C. E. Clark, Operations Research 9, 1961).
+func normalLesser(a, b float64) float64 {
+	theta := math.Sqrt(a + b)
+	alpha := (a - b) / theta
+	density := math.Exp(-alpha*alpha/2) / math.Sqrt(2*math.Pi)
+	return a*math.Erfc(alpha/math.Sqrt2)/2 + b*math.Erfc(-alpha/math.Sqrt2)/2 - theta*density
 }
 
 // Limit is what the effectiveness tends to as NTU grows without bound.
@@ -163,57 +195,8 @@ func (a Arrangement) Limit(c float64, hotIsMin bool) float64 {
 	case Shells:
 		return inSeries(2/(1+c+math.Hypot(1, c)), c, a.shells())
 	}
-	if (a.Kind == HotMixed) != hotIsMin {
+	if a.maxMixed(hotIsMin) {
 		return -math.Expm1(-c) / c
 	}
 	return -math.Expm1(-1 / c)
-}
-
-// mostNTU is up to where an inverse is looked for; beyond it an effectiveness is at its limit
-// to all digits that can be measured.
-const mostNTU = 100
-
-// NTU is the inverse of [Arrangement.Effectiveness], in closed form or by bisection to a part
-// in 10¹². The error is a *[LimitError]; nothing is clipped.
-func (a Arrangement) NTU(eps, c float64, hotIsMin bool) (float64, error) {
-	limit := a.Limit(c, hotIsMin)
-	if !(eps > 0 && eps < limit) {
-		return 0, &LimitError{a, c, eps, limit}
-	}
-	var ntu float64
-	switch {
-	case c < 1e-9:
-		ntu = -math.Log1p(-eps)
-	case a.Kind == Counterflow && 1-c < 1e-9:
-		ntu = eps / (1 - eps)
-	case a.Kind == Counterflow:
-		ntu = math.Log((1-eps*c)/(1-eps)) / (1 - c)
-	case a.Kind == Parallel:
-		ntu = -math.Log1p(-eps*(1+c)) / (1 + c)
-	default:
-		ntu = a.bisect(eps, c, hotIsMin)
-	}
-	if !(ntu < mostNTU) {
-		return 0, &LimitError{a, c, eps, limit}
-	}
-	return ntu, nil
-}
-
-func (a Arrangement) bisect(eps, c float64, hotIsMin bool) float64 {
-	low, high := 0.0, 1.0
-	for high < mostNTU && a.Effectiveness(high, c, hotIsMin) < eps {
-		low, high = high, 2*high
-	}
-	for range 60 {
-		mid := (low + high) / 2
-		if a.Effectiveness(mid, c, hotIsMin) < eps {
-			low = mid
-		} else {
-			high = mid
-		}
-		if high-low < 1e-12*high {
-			break
-		}
-	}
-	return (low + high) / 2
 }

@@ -50,6 +50,42 @@ func TestEffectiveness(t *testing.T) {
 	}
 }
 
+// Near equal capacity rates, and where a stream's is next to none, the closed forms lose no
+// digits: ε of counterflow at C = 1 − d is NTU/(1 + NTU)·(1 + d·NTU/2/(1 + NTU)), but for terms
+// with d².
+func TestEffectivenessNearEqualRates(t *testing.T) {
+	for _, ntu := range []float64{0.3, 1, 5, 40} {
+		for _, d := range []float64{1e-12, 1e-9, 1e-8} {
+			want := ntu / (1 + ntu) * (1 + d*ntu/2/(1+ntu))
+			near(t, "counterflow", Arrangement{}.Effectiveness(ntu, 1-d, true), want, 1e-14)
+			if got, err := (Arrangement{}).NTU(want, 1-d, true); err != nil || math.Abs(got/ntu-1) > 1e-12 {
+				t.Errorf("NTU of counterflow at C = 1 − %g: %v, %v; want %v", d, got, err, ntu)
+			}
+		}
+	}
+	for _, a := range []Arrangement{{Shells, 1}, {Shells, 3}, {Kind: Crossflow}, {Kind: HotMixed}, {Kind: ColdMixed}} {
+		near(t, a.String()+" at C = 1", a.Effectiveness(2, 1-1e-10, true), a.Effectiveness(2, 1, true), 1e-9)
+		near(t, a.String()+" at C = 0", a.Effectiveness(2, 1e-8, true), -math.Expm1(-2), 1e-7)
+	}
+}
+
+// An exchanger without flow to speak of comes to its limit, and to no more.
+func TestEffectivenessFarBeyond(t *testing.T) {
+	for kind := Counterflow; kind <= ColdMixed; kind++ {
+		for _, c := range []float64{0.01, 0.5, 0.99, 1} {
+			a, before := Arrangement{kind, 2}, 0.0
+			for _, ntu := range []float64{50, 100, 499, 501, 1e3, 1e5, 1e9} {
+				eps, limit := a.Effectiveness(ntu, c, true), a.Limit(c, true)
+				if !(eps >= before-3e-6 && eps <= limit+1e-12) {
+					t.Errorf("%v at NTU %v and C %v: effectiveness %v, limit %v, before %v", a, ntu, c, eps, limit, before)
+				}
+				before = eps
+			}
+			near(t, a.String(), before, a.Limit(c, true), 1e-4)
+		}
+	}
+}
+
 func TestCorrection(t *testing.T) {
 	for _, x := range []struct{ p, r, want float64 }{
 		{0.2, 1, 0.9895}, {0.3, 1, 0.9686}, {0.4, 1, 0.9209}, {0.5, 1, 0.8023}, {0.5, 0.5, 0.9420}, {0.3, 2, 0.8829}, {0.4, 1.2, 0.8874},
@@ -103,6 +139,12 @@ func TestBooks(t *testing.T) {
 	cold := 25 + 2*2000*270/(6.857*1050)
 	near(t, "shells, LMTD", LMTD(400-cold, 130-25), 157.45, 0.05)
 	near(t, "one shell, F", Correction((cold-25)/375, 270/(cold-25), 1), 0.575, 0.002)
+	// The same in crossflow, both unmixed: F = 0.85, read from a chart; the ratio of the NTU of
+	// counterflow to that of the arrangement, of which the hot stream has the smaller rate.
+	eps, ratio := 270.0/375, 2*2000/(6.857*1050)
+	counter, _ := Arrangement{}.NTU(eps, ratio, true)
+	cross, _ := Arrangement{Kind: Crossflow}.NTU(eps, ratio, true)
+	near(t, "crossflow, F", counter/cross, 0.85, 0.01)
 	near(t, "two shells, F", Correction((cold-25)/375, 270/(cold-25), 2), 0.927, 0.001)
 }
 
@@ -136,7 +178,7 @@ func TestInverse(t *testing.T) {
 		if limit-eps < 1e-9 {
 			return
 		}
-		if err != nil || math.Abs(got/ntu-1) > 1e-6 {
+		if err != nil || math.Abs(got/ntu-1) > 1e-6 || limit-eps > 1e-4 && math.Abs(got/ntu-1) > 1e-10 {
 			t.Fatalf("%v: NTU %v, %v; want %v", a, got, err, ntu)
 		}
 		var limits *LimitError
@@ -295,10 +337,18 @@ func TestTrend(t *testing.T) {
 }
 
 func BenchmarkObserve(b *testing.B) {
+	for _, a := range []Arrangement{{}, {Shells, 2}, {Kind: Crossflow}, {Kind: HotMixed}} {
+		b.Run(a.String(), func(b *testing.B) { benchmarkObserve(b, a) })
+	}
+}
+
+func benchmarkObserve(b *testing.B, a Arrangement) {
+	m := model
+	m.Arrangement = a
 	s := &State{Stream{2, 4180, 90, 57.6, 0.02, 0.002, 0.1, 0.1}, Stream{3, 4180, 40, 61.6, 0.03, 0.002, 0.1, 0.1}}
 	b.ReportAllocs()
 	for b.Loop() {
-		if _, err := model.Observe(s, 0.5, 0); err != nil {
+		if _, err := m.Observe(s, 0.5, 0); err != nil {
 			b.Fatal(err)
 		}
 	}
