@@ -49,7 +49,7 @@ var arrows = map[string][]string{
 	},
 	"agent/relay": {"agent/view", "agent/warn", "agent/loads", "ingest/quality"},
 	"agent/demo": {
-		"agent/view", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
+		"agent/view", "agent/warn", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
 	"agent":               {"agent/survey", "agent/proving", "agent/account", "agent/learning", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/warn", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},

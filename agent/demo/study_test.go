@@ -290,12 +290,10 @@ func TestStudyOfVerdicts(t *testing.T) {
 	t.Log(b.String())
 }
 
-// hold holds a tally against the bounds. The week before something goes wrong is too short a
-// time for a rate: a plant whose errors happen to add up to more than twice their standard
-// uncertainty is warned of in it, once.
+// hold holds a tally against the bounds.
 func (c *studied) hold(t *testing.T, x *tally) {
 	t.Helper()
-	if bound := most(chosen * figures * x.years); (c.first == "" || c.look != 0) && x.raised > bound {
+	if bound := most(chosen * figures * x.years); x.raised > bound {
 		t.Errorf("%s: %d false warnings in %.2f years, want %d or fewer of the %d a year chosen", c.Name, x.raised, x.years, bound, chosen*figures)
 	}
 	if c.FoulsIn > 0 && (x.warned < x.trials || quantile(x.lost, 1) >= 0.12) {

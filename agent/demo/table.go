@@ -42,6 +42,17 @@ func tableLines(s *view.Snapshot, o TableOptions) []string {
 	for i := range s.Loads {
 		lines = append(lines, remarks(&s.Loads[i], o.Width)...)
 	}
+	for i := range s.Exchangers {
+		if x, ok := s.Told(i); ok {
+			lines = append(lines, wrap(exchangerLine(x), o.Width)...)
+		}
+	}
+	for _, l := range s.Warnings.Listed() {
+		if l.End != 0 {
+			continue // over, and not yet acknowledged: heatreeve warnings lists it
+		}
+		lines = append(lines, wrap(warningLine(&l, o.Zone), o.Width)...)
+	}
 	for _, line := range standing(s) {
 		lines = append(lines, fit(line, o.Width))
 	}

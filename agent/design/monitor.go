@@ -10,6 +10,9 @@ const (
 	// slack is k of the CUSUM in standard deviations of a window: half of the shift that is
 	// found soonest. Common practice, with the tables of the NIST/SEMATECH e-Handbook, 6.3.2.3.
 	slack = 0.5
+	// dead is how many lasting standard uncertainties a deviation may be off for good: of plants
+	// whose instruments are sound one in eighty is off by more. Common practice, no source.
+	dead = 2.5
 	// leastWindows is how many windows must have shown how they scatter before one counts.
 	// Common practice, no source.
 	leastWindows = 20
@@ -19,12 +22,13 @@ const (
 // Monitor follows a deviation through windows in a row that do not overlap, by a tabular
 // CUSUM of
 //
-//	x = sign(d)·max(0, |d| − 2·u)/s,
+//	x = sign(d)·max(0, |d| − 2.5·u)/s,
 //
 // d the mean deviation of a window, u what of its standard uncertainty lasts, s its standard
 // deviation by what does not: as the windows scatter, and not less than their readings say. A
-// constant error within what is stated of the instruments so never adds up. The limit h is
-// that which, with windows of scatter alone, gives the chosen number of false warnings in a
+// constant error within what is stated of the instruments so hardly ever adds up: where the
+// errors together come to more than 2.5·u, as in one of eighty plants, it is warned of once.
+// The limit h is that which, with windows of scatter alone, gives the chosen number of false warnings in a
 // year of windows.
 type Monitor struct {
 	CUSUM drift.CUSUM
@@ -41,7 +45,7 @@ type Drift struct {
 	Windows   int     // that have shown how they scatter
 	Waits     int     // for so many more before one counts
 	Deviation float64 // of the last window, a fraction
-	Dead      float64 // dead band 2·u
+	Dead      float64 // dead band 2.5·u
 	Scatter   float64 // s
 	X         float64 // what the CUSUM took
 	High, Low float64 // its sums
@@ -72,7 +76,7 @@ func (l limits) monitor(minutes int, falseWarnings float64) Monitor {
 // what of its standard uncertainty lasts and what is random.
 func (m *Monitor) Observe(from int64, d, lasting, random float64) {
 	m.Scale.Observe(d)
-	x := Drift{Windows: m.Scale.N, Deviation: d, Dead: 2 * lasting, Limit: m.limit}
+	x := Drift{Windows: m.Scale.N, Deviation: d, Dead: dead * lasting, Limit: m.limit}
 	x.Scatter = max(random, m.Scale.Sigma())
 	x.Waits = max(0, leastWindows-m.Scale.N)
 	if x.Waits == 0 && x.Scatter > 0 {

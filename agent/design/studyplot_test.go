@@ -43,8 +43,8 @@ func drawLoop(t *testing.T, name string, all []hourly) {
 		}
 		deviation[k] = append(deviation[k], plotter.XY{X: days(i), Y: x.Deviation / 1e3})
 		expected = append(expected, plotter.XY{X: days(i), Y: x.Expected.Duty / 1e3})
-		dead := 2 * x.Expected.DeviationLasting / 1e3
-		over, under = append(over, plotter.XY{X: days(i), Y: dead}), append(under, plotter.XY{X: days(i), Y: -dead})
+		band := dead * x.Expected.DeviationLasting / 1e3
+		over, under = append(over, plotter.XY{X: days(i), Y: band}), append(under, plotter.XY{X: days(i), Y: -band})
 		if k == 1 {
 			high = append(high, plotter.XY{X: days(i), Y: x.Drift.High})
 			low = append(low, plotter.XY{X: days(i), Y: -x.Drift.Low})

@@ -52,10 +52,9 @@ func (j *Judge) warn(g *Grounds) {
 			j.clear(s.kind, now)
 		}
 	}
-	switch beyond := g.Verdict == Short || g.Verdict == Over; {
-	case j.Drift.Side == 0:
-		j.clear(WarnDrifting, now)
-	case j.standing(WarnDrifting) != nil && g.Compared(), !beyond && j.standing(WarnShort) == nil && j.standing(WarnOver) == nil:
+	if j.Drift.Side == 0 || j.standing(WarnShort) != nil || j.standing(WarnOver) != nil {
+		j.clear(WarnDrifting, now) // it has come back, or gone on to be one of these
+	} else if g.Compared() || j.standing(WarnDrifting) == nil {
 		j.raise(j.warning(WarnDrifting, j.Drift.Since, g), now)
 	}
 }

@@ -110,7 +110,7 @@ func (p *page) drift() {
 		return
 	}
 	d := p.given("dw", "deviation of the last window, as a part", x.Deviation, "1", place(x.Deviation, fine), "windows that do not overlap")
-	dead := p.given("D", "dead band, twice what of its uncertainty lasts", x.Dead, "1", place(x.Dead, coarse+1), "")
+	dead := p.given("D", "dead band, 2.5 times what of its uncertainty lasts", x.Dead, "1", place(x.Dead, coarse+1), "")
 	scatter := p.given("sw", "standard deviation of windows", x.Scatter, "1", place(x.Scatter, coarse+1), "successive differences, and random parts")
 	if x.X != 0 {
 		beyond := d.minus(dead)

@@ -21,7 +21,9 @@ type Scale struct {
 	Last     float64
 }
 
-// Observe takes in the next value.
+// Observe takes in the next value. Once there have been some, what lies beyond three of the
+// standard deviations that they had counts as three (winsorised, as P. J. Huber's Robust
+// Statistics, 1981, has it): a shift is not taken for scatter, or it would hide itself.
 func (s *Scale) Observe(x float64) {
 	s.N++
 	if s.N == 1 {
@@ -30,11 +32,25 @@ func (s *Scale) Observe(x float64) {
 	}
 	w := max(1/float64(s.N), 1.0/memory)
 	v := max(1/float64(s.N-1), 1.0/memory)
-	s.Half += v * ((x-s.Last)*(x-s.Last)/2 - s.Half)
-	d := x - s.Mean
+	apart, d := x-s.Last, x-s.Mean
+	if s.N > settled {
+		apart, d = within(apart, math.Sqrt(2*s.Half)), within(d, math.Sqrt(s.Variance))
+	}
+	s.Half += v * (apart*apart/2 - s.Half)
 	s.Mean += w * d
 	s.Variance += w * (d*d*(1-w) - s.Variance)
 	s.Last = x
+}
+
+// settled is after how many values they tell a standard deviation to hold others against.
+const settled = 20
+
+// within keeps x within three standard deviations; of none there is nothing to keep it by.
+func within(x, sigma float64) float64 {
+	if !(sigma > 0) {
+		return x
+	}
+	return max(-3*sigma, min(3*sigma, x))
 }
 
 // Lag is the correlation of successive values, 0 to 0.9: by the ratio of von Neumann (Annals

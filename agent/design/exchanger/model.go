@@ -77,11 +77,16 @@ func (s *State) driven() bool {
 
 // Duty is the duty of the clean exchanger at the inlets and flows of a state, W.
 func (m *Model) Duty(s *State) (float64, error) {
+	return m.passed(s, m.Clean(s))
+}
+
+// passed is the duty that a conductance passes.
+func (m *Model) passed(s *State, conductance float64) (float64, error) {
 	if !s.driven() {
 		return 0, ErrNoDrive
 	}
 	least, ratio, hotIsMin := s.rates()
-	eps := m.Effectiveness(m.Clean(s)/least, ratio, hotIsMin)
+	eps := m.Effectiveness(conductance/least, ratio, hotIsMin)
 	return eps * least * (s.Hot.Inlet - s.Cold.Inlet), nil
 }
 

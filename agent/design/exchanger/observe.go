@@ -142,8 +142,14 @@ func (m *Model) Slopes(s *State, weight, loss float64) (slopes [Readings]Statist
 // beyond that of the clean exchanger, W: those of [Model.Slopes] and [State.Errors], without
 // the conductance, at a third of the time.
 func (m *Model) BeyondErrors(s *State) (hot, cold float64) {
+	at := m.Clean(s)
+	follows := m.Hot.PerKelvin != 0 || m.Cold.PerKelvin != 0
 	slopes := s.slopes(func(x *State) (t Statistics) {
-		clean, err := m.Duty(x)
+		conductance := at
+		if follows || x.Hot.Flow != s.Hot.Flow || x.Cold.Flow != s.Cold.Flow {
+			conductance = m.Clean(x)
+		}
+		clean, err := m.passed(x, conductance)
 		if err != nil {
 			clean = math.NaN()
 		}
