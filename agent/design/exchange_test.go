@@ -114,7 +114,7 @@ func TestFoulingIsWarnedOf(t *testing.T) {
 				t.Errorf("since day %d, want after day 10", since)
 			}
 			s := b.Exchanger(0)
-			if _, early, _, ok := s.Course.Reach(0.02e-3); !ok || !(early >= 0) {
+			if _, early, _, ok := s.Course.Reach(0.02e-3, s.FoulingError); !ok || !(early >= 0) {
 				t.Errorf("course %+v does not reach its allowance", s.Course)
 			}
 			return

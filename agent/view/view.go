@@ -73,7 +73,7 @@ func (x *Exchanger) Reached() (days, early, late float64, ok bool) {
 	if x.Allowance == 0 {
 		return 0, 0, 0, false
 	}
-	return x.Course.Reach(x.Allowance)
+	return x.Course.Reach(x.Allowance, x.FoulingError)
 }
 
 // Witness is what another meter has counted since midnight by the clock of the site, and what

@@ -297,45 +297,6 @@ func gain(t *testing.T, eps, c float64) float64 {
 	return o.Gain
 }
 
-func TestTrend(t *testing.T) {
-	r := rand.New(rand.NewPCG(4, 4))
-	held, open := 0, 0
-	const trials = 400
-	for range trials {
-		var x Trend
-		for day := range int64(20) {
-			for range 24 {
-				x.Observe(day, 1e-6*float64(day)+3e-6*r.NormFloat64())
-			}
-		}
-		c := x.Course()
-		days, early, late, ok := c.Reach(60e-6)
-		if !ok || !(early <= days && days <= late) {
-			t.Fatalf("reached in %v, %v to %v, %v", days, early, late, ok)
-		}
-		if early <= 41 && 41 <= late { // the truth: 60 days after day 0, the last being day 19
-			held++
-		}
-		if math.IsInf(late, 1) {
-			open++
-		}
-	}
-	if held < trials*92/100 || open > 0 {
-		t.Errorf("%d of %d intervals hold the truth, want about 95 %%; %d are open", held, trials, open)
-	}
-	var flat Trend
-	for day := range int64(200) {
-		flat.Observe(day, 1e-6*r.NormFloat64())
-	}
-	if len(flat.Days) != mostDays {
-		t.Errorf("%d days are kept, want %d", len(flat.Days), mostDays)
-	}
-	c := flat.Course()
-	if _, _, late, ok := c.Reach(1e-3); ok && math.Abs(c.Slope) < 2*c.SlopeError && !math.IsInf(late, 1) {
-		t.Errorf("a slope of %v ± %v reaches the limit by day %v", c.Slope, c.SlopeError, late)
-	}
-}
-
 func BenchmarkObserve(b *testing.B) {
 	for _, a := range []Arrangement{{}, {Shells, 2}, {Kind: Crossflow}, {Kind: HotMixed}} {
 		b.Run(a.String(), func(b *testing.B) { benchmarkObserve(b, a) })
