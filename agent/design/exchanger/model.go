@@ -22,7 +22,7 @@ type Film struct {
 func (f *Film) At(flow, temperature float64) float64 {
 	r := f.Resistance
 	if f.Exponent != 0 {
-		r *= math.Pow(flow/f.Flow, -f.Exponent)
+		r *= math.Exp(-f.Exponent * math.Log(flow/f.Flow)) // half the time of math.Pow
 	}
 	if f.PerKelvin != 0 {
 		r /= max(0.1, 1+f.PerKelvin*(temperature-f.Temperature))
