@@ -14,6 +14,7 @@ import (
 // checks has the check that reads each file; a file without one fails TestEveryFileIsChecked.
 var checks = map[string]func(*testing.T, string){
 	"README.md":                           checkReadme,
+	"runbook.md":                          checkRunbook,
 	"build":                               checkScript,
 	"test":                                checkScript,
 	"systemd/heatreeve.service":           checkUnit,

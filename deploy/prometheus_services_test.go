@@ -49,14 +49,27 @@ func TestCasesHoldTheRules(t *testing.T) {
 		{`and on (job, instance) heatreeve_broker_connected == 1`, `and on (job, instance) heatreeve_broker_connected >= 0`},
 		{`_timestamp_seconds > 0`, `_timestamp_seconds > 1e9`},
 		{`verdict="blind"`, `verdict=~"blind|idle"`},
-		{`short|over`, `short|over|undecided`},
-		{`short|over`, `short`},
+		{`active{kind="short"}`, `active{kind=~"short|over"}`},
+		{`active{kind="over"}`, `active`},
+		{`active{kind="drifting"} == 1`, `active{kind="drifting"} >= 0`},
+		{`active{kind="fouling"}`, `active{kind="unbalanced"}`},
+		{`active{kind="unbalanced"}`, `active{kind="fouling"}`},
+		{`shelved == 1`, `shelved >= 0`},
+		{`shelved == 1`, `shelved > 1`},
+		{`unless on (job, instance, subject, kind)`, `unless on (job, instance, subject)`},
+		{`unless on (job, instance, subject, kind)`, `unless on (subject, kind)`},
+		{`unless on (job, instance, subject, kind)`, `unless on (job, instance, kind)`},
+		{`acknowledged{job=%q,instance=%q,subject=%q,kind=%q} == 1`, `acknowledged{job=%q,instance=%q,subject=%q,kind=%q} >= 0`},
+		{`runbook.md#`, `runbook.md`},
 		{`window="1h"`, `window=~"1h|1m"`},
 		{`< 0.9`, `< 0.91`},
 		{`> 3600`, `> 36`},
 		{`keep_firing_for: 10m`, `keep_firing_for: 1s`},
 		{`total[5m]) > 0`, `total[5m]) >= 0`},
 		{`total[5m]) > 0`, `total[30m]) > 0`},
+		{`keep_firing_for: 2m`, `keep_firing_for: 1s`},
+		{`keep_firing_for: 2m`, `keep_firing_for: 20m`},
+		{`        for: 1m`, `        for: 0s`},
 		{`for: 5m`, `for: 0s`},
 		{`for: 10m`, `for: 0s`},
 		{`for: 2m`, `for: 0s`},
@@ -68,18 +81,22 @@ func TestCasesHoldTheRules(t *testing.T) {
 	}
 }
 
-// scrape is what an agent with one load in trouble might answer.
+// scrape is what an agent might answer that warns of two loads, one of them shelved, and of an exchanger.
 const scrape = `# TYPE heatreeve_broker_connected gauge
 heatreeve_broker_connected 1
-# TYPE heatreeve_load_verdict gauge
-heatreeve_load_verdict{load="hot-water",verdict="holding"} 0
-heatreeve_load_verdict{load="hot-water",verdict="short"} 1
-heatreeve_load_verdict{load="glycol",verdict="holding"} 1
-heatreeve_load_verdict{load="glycol",verdict="short"} 0
+# TYPE heatreeve_warning_active gauge
+heatreeve_warning_active{subject="hot-water",kind="short"} 1
+heatreeve_warning_active{subject="hot-water",kind="drifting"} 0
+heatreeve_warning_active{subject="glycol",kind="short"} 1
+heatreeve_warning_active{subject="plates",kind="fouling"} 1
+# TYPE heatreeve_warning_shelved gauge
+heatreeve_warning_shelved{subject="hot-water",kind="short"} 0
+heatreeve_warning_shelved{subject="glycol",kind="short"} 1
+heatreeve_warning_shelved{subject="plates",kind="unbalanced"} 1
 `
 
 // TestPrometheusRunsTheFiles starts the server itself: it scrapes the target, loads each rule in good health, and holds
-// the alert on the load in trouble and no other.
+// the alerts on what is in trouble and not shelved, and no other.
 func TestPrometheusRunsTheFiles(t *testing.T) {
 	agent := httptest.NewServer(http.HandlerFunc(func(w http.ResponseWriter, _ *http.Request) {
 		w.Header().Set("Content-Type", "text/plain; version=0.0.4")
@@ -96,7 +113,7 @@ func TestPrometheusRunsTheFiles(t *testing.T) {
 	server := start(t, exec.Command(program(t, "prometheus"), "--config.file="+filepath.Join(dir, "prometheus.yml"),
 		"--storage.tsdb.path="+filepath.Join(dir, "data"), "--web.listen-address="+address))
 
-	want := []string{"HeatreeveDutyOffDesign hot-water pending"}
+	want := []string{"HeatreeveDutyShort hot-water pending", "HeatreeveExchangerFouling plates pending"}
 	server.eventually(t, func() error {
 		got, err := alerts(address)
 		if err == nil && !slices.Equal(got, want) {
@@ -127,8 +144,9 @@ func alerts(address string) ([]string, error) {
 	err := ask(address, "/api/v1/alerts", &data)
 	var all []string
 	for _, a := range data.Alerts {
-		all = append(all, a.Labels["alertname"]+" "+a.Labels["load"]+" "+a.State)
+		all = append(all, a.Labels["alertname"]+" "+a.Labels["subject"]+" "+a.State)
 	}
+	slices.Sort(all)
 	return all, err
 }
 

@@ -10,6 +10,8 @@ import (
 	"testing"
 
 	"go.yaml.in/yaml/v3"
+
+	"heatreeve/agent/design"
 )
 
 // metrics are the names that the rules may build on, each with its own labels; the agent's other metrics are not needed
@@ -18,7 +20,7 @@ var metrics = map[string][]string{
 	"heatreeve_broker_connected":              {},
 	"heatreeve_history_commit_failures_total": {},
 	"heatreeve_load_coverage_ratio":           {"load", "window"},
-	"heatreeve_load_duty_mean_watts":          {"load", "window"},
+	"heatreeve_load_deviation_watts":          {"load"},
 	"heatreeve_load_expected_duty_watts":      {"load"},
 	"heatreeve_load_quality":                  {"load", "quality"},
 	"heatreeve_load_time_seconds_total":       {"load", "kind"},
@@ -27,6 +29,14 @@ var metrics = map[string][]string{
 	"heatreeve_tag_reading_timestamp_seconds": {"tag"},
 	"heatreeve_tag_readings_total":            {"tag"},
 	"heatreeve_tag_refused_total":             {"tag", "reason"},
+	"heatreeve_warning_acknowledged":          {"subject", "kind"},
+	"heatreeve_warning_active":                {"subject", "kind"},
+	"heatreeve_warning_shelved":               {"subject", "kind"},
+
+	"heatreeve_exchanger_clean_conductance_watts_per_kelvin": {"exchanger"},
+	"heatreeve_exchanger_closure_uncertainty_watts":          {"exchanger"},
+	"heatreeve_exchanger_closure_watts":                      {"exchanger"},
+	"heatreeve_exchanger_conductance_watts_per_kelvin":       {"exchanger"},
 }
 
 var (
@@ -57,6 +67,7 @@ type rule struct {
 	KeepFiring  string `yaml:"keep_firing_for"`
 	Labels      map[string]string
 	Annotations map[string]string
+	group       string
 }
 
 func decode(t *testing.T, file string, into any) {
@@ -82,36 +93,73 @@ func readRules(t *testing.T, file string) []rule {
 	decode(t, file, &f)
 	var all []rule
 	for _, g := range f.Groups {
-		all = append(all, g.Rules...)
+		for _, r := range g.Rules {
+			r.group = g.Name
+			all = append(all, r)
+		}
 	}
 	return all
 }
 
+// groups are the alerts by what they are about.
+var groups = map[string][]string{
+	"heatreeve-verdict":  {"HeatreeveDutyShort", "HeatreeveDutyOver", "HeatreeveDutyDrifting", "HeatreeveExchangerFouling", "HeatreeveExchangerUnbalanced"},
+	"heatreeve-readings": {"HeatreeveTagStale", "HeatreeveTagNeverRead", "HeatreeveLoadBlind", "HeatreeveLoadUncertain"},
+	"heatreeve-agent":    {"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveHistoryFailing"},
+	"heatreeve-accounts": {"HeatreeveCoverageLow"},
+}
+
 func checkRules(t *testing.T, file string) {
-	told := map[string]bool{}
+	got := map[string][]string{}
 	for _, r := range readRules(t, file) {
-		told[r.Alert] = true
-		checkSelectors(t, r.Expr)
-		if !slices.Contains([]string{"critical", "warning", "info"}, r.Labels["severity"]) {
-			t.Errorf("%s has severity %q", r.Alert, r.Labels["severity"])
-		}
-		if r.For == "" {
-			t.Errorf("%s fires at once; want it to last", r.Alert)
-		}
-		text := r.Annotations["summary"] + r.Annotations["description"]
-		checkSelectors(t, text)
-		if !strings.Contains(r.Annotations["description"], "Look first at") {
-			t.Errorf("%s does not say what to look at first", r.Alert)
-		}
-		for _, what := range []string{"load", "tag"} {
-			if strings.Contains(r.Expr, "heatreeve_"+what+"_") && !strings.Contains(r.Annotations["summary"], "$labels."+what) {
-				t.Errorf("the summary of %s does not name the %s", r.Alert, what)
-			}
+		got[r.group] = append(got[r.group], r.Alert)
+		checkRule(t, r)
+	}
+	if !maps.EqualFunc(got, groups, slices.Equal) {
+		t.Errorf("alerts %q; want %q", got, groups)
+	}
+	checkKinds(t, file)
+}
+
+func checkRule(t *testing.T, r rule) {
+	checkSelectors(t, r.Expr)
+	if !slices.Contains([]string{"critical", "warning", "info"}, r.Labels["severity"]) {
+		t.Errorf("%s has severity %q", r.Alert, r.Labels["severity"])
+	}
+	if r.For == "" || r.KeepFiring == "" {
+		t.Errorf("%s waits for %q and stays for %q; want both", r.Alert, r.For, r.KeepFiring)
+	}
+	checkSelectors(t, r.Annotations["summary"]+r.Annotations["description"])
+	if !strings.Contains(r.Annotations["description"], "Look first at") {
+		t.Errorf("%s does not say what to look at first", r.Alert)
+	}
+	if got, want := r.Annotations["runbook_url"], "{{ $externalURL }}/user/runbook.md#"+r.Alert; got != want {
+		t.Errorf("%s: runbook_url %q; want %q", r.Alert, got, want)
+	}
+	for expr, label := range map[string]string{"heatreeve_load_": "load", "heatreeve_tag_": "tag", "heatreeve_warning_": "subject"} {
+		if strings.Contains(r.Expr, expr) && !strings.Contains(r.Annotations["summary"], "$labels."+label) {
+			t.Errorf("the summary of %s does not name the %s", r.Alert, label)
 		}
 	}
-	want := []string{"HeatreeveAgentDown", "HeatreeveBrokerGone", "HeatreeveCoverageLow", "HeatreeveDutyOffDesign", "HeatreeveHistoryFailing", "HeatreeveLoadBlind", "HeatreeveLoadUncertain", "HeatreeveTagNeverRead", "HeatreeveTagStale"}
-	if got := slices.Sorted(maps.Keys(told)); !slices.Equal(got, want) {
-		t.Errorf("alerts %q; want %q", got, want)
+}
+
+// checkKinds wants one alert for each kind of warning, and each to leave out what is shelved.
+func checkKinds(t *testing.T, file string) {
+	told := map[design.Kind]int{}
+	for _, r := range readRules(t, file) {
+		kind, rest, ok := strings.Cut(strings.TrimPrefix(r.Expr, `heatreeve_warning_active{kind="`), `"} == 1`)
+		if !ok || r.group != "heatreeve-verdict" {
+			continue
+		}
+		told[design.Kind(kind)]++
+		if want := " unless on (job, instance, subject, kind) heatreeve_warning_shelved == 1"; rest != want {
+			t.Errorf("%s goes on with %q; want %q", r.Alert, rest, want)
+		}
+	}
+	for _, k := range design.Kinds() {
+		if told[k] != 1 {
+			t.Errorf("%d alerts on warnings of kind %s; want one", told[k], k)
+		}
 	}
 }
 
@@ -124,6 +172,7 @@ func checkRuleCases(t *testing.T, file string) {
 		Tests              []struct {
 			Name        string
 			Interval    string
+			ExternalURL string                            `yaml:"external_url"`
 			InputSeries []struct{ Series, Values string } `yaml:"input_series"`
 			Cases       []struct {
 				EvalTime  string `yaml:"eval_time"`
