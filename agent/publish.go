@@ -101,7 +101,8 @@ func (a *Agent) loadView(l *ledger, i int, s loads.LoadState) view.Load {
 	g := l.accounts.verdicts.Grounds(i)
 	return view.Load{
 		Name: a.site.Loads[i].Name, Figure: s.Figure, Until: s.Until, Means: s.Means, Booked: l.committed[i],
-		Design: g.Today.Duty, Allow: g.Target.Allow, Grounds: g,
+		Design: g.Today.Duty, DesignError: g.Today.Lasting, Allow: g.Target.Allow,
+		Deviation: g.Deviation, DeviationError: g.Uncertainty(), Compared: g.Compared(),
 		Witness: l.attested.at(i, l.accounts.engine.Through()),
 		Verdict: l.accounts.verdicts.Verdict(i, !s.Figure.Measured(), s.Figure.Idle),
 	}

@@ -191,11 +191,11 @@ func (o *sink) load(l *view.Load, now design.Verdict) {
 	o.counter(doubtful, float64(l.Booked.Uncertain)/1e9, l.Name)
 	if l.Design != 0 {
 		o.gauge(expected, l.Design, l.Name)
-		o.gauge(expectedU, l.Grounds.Today.Lasting, l.Name)
+		o.gauge(expectedU, l.DesignError, l.Name)
 	}
-	if l.Grounds.Compared() {
-		o.gauge(off, l.Grounds.Deviation, l.Name)
-		o.gauge(offU, l.Grounds.Uncertainty(), l.Name)
+	if l.Compared {
+		o.gauge(off, l.Deviation, l.Name)
+		o.gauge(offU, l.DeviationError, l.Name)
 	}
 	for _, v := range design.Verdicts {
 		o.gauge(verdict, truth(v == now), l.Name, v.String())

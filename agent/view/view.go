@@ -43,9 +43,13 @@ type Load struct {
 	Design  float64      // duty expected in the last minute, W; 0 where it is not known, or the load has no design
 	Allow   float64      // allowance, fraction of Design
 	Verdict design.Verdict
-	// Grounds are what the verdict rests on.
-	Grounds design.Grounds
-	Witness *Witness // nil of a load without one
+	// DesignError is the standard uncertainty of Design by what lasts, W.
+	DesignError float64
+	// Deviation is the mean duty of the minutes that a deviation must last less what was expected,
+	// with its standard uncertainty, W; only where they were Compared.
+	Deviation, DeviationError float64
+	Compared                  bool
+	Witness                   *Witness // nil of a load without one
 }
 
 // Exchanger is what an exchanger did in its last window of minutes.
