@@ -87,6 +87,7 @@ func (x *Exchange) restore(was Exchange) {
 	was.of, was.lasting = x.of, x.lasting
 	was.Fouling.limit, was.Balance.limit = x.Fouling.limit, x.Balance.limit
 	*x = was
+	x.Last.Course = x.Trend.Course() // of which gob keeps but the exported fields
 }
 
 // observe takes in a minute of both sides, of which one may be missing; steady tells whether
@@ -229,6 +230,9 @@ func (x *Exchange) expected(pair [2]*Minute) [2]expect.Expected {
 	var readings [2]float64
 	if !x.of.Calibrated { // else the same errors made the model
 		readings[0], readings[1] = x.of.Model.BeyondErrors(&s)
+		if !(readings[0]+readings[1] <= math.MaxFloat64) {
+			return unknown("exchanger " + x.of.Name + ": the inlets are as warm as each other within what is known of them")
+		}
 	}
 	var both [2]expect.Expected
 	for side, loss := range [...]float64{x.of.Loss, 0} {

@@ -73,8 +73,12 @@ func (l limits) monitor(minutes int, falseWarnings float64) Monitor {
 }
 
 // Observe takes in the mean deviation of a window that began at from, as a fraction, with
-// what of its standard uncertainty lasts and what is random.
+// what of its standard uncertainty lasts and what is random. A window of which one of them is
+// not finite tells nothing: it would stay in the sums for good.
 func (m *Monitor) Observe(from int64, d, lasting, random float64) {
+	if sum := math.Abs(d) + lasting + random; !(sum <= math.MaxFloat64) {
+		return
+	}
 	m.Scale.Observe(d)
 	x := Drift{Windows: m.Scale.N, Deviation: d, Dead: dead * lasting, Limit: m.limit}
 	x.Scatter = max(random, m.Scale.Sigma())

@@ -171,6 +171,9 @@ func (s *State) slopes(tell func(*State) Statistics) (slopes [Readings]Statistic
 				step = 1e-3 * was
 			}
 		}
+		if !(step > 0) { // a reading of 0 without an uncertainty, which tells nothing
+			continue
+		}
 		*value = was + step
 		above := tell(&x)
 		*value = was - step
