@@ -28,11 +28,26 @@ func NewPlant(cfg Config) *Plant {
 	for _, of := range cfg.Exchangers {
 		x := newExchange(of, l)
 		p.exchanges = append(p.exchanges, x)
+		x.Of = fingerprint(x.named(cfg.Loads))
 		for side, load := range [...]int{of.Hot, of.Cold} {
+			if j := p.judges[load]; j.target.ByExchanger {
+				j.Of = fingerprint([]uint64{j.Of, x.Of}) // what is expected changes with the exchanger
+			}
 			p.judges[load].meets(x, side, p.judges[[...]int{of.Cold, of.Hot}[side]])
 		}
 	}
 	return p
+}
+
+// named is the exchanger by the names of its sides, which stay when loads are added to a site.
+func (x *Exchange) named(loads []Target) any {
+	of := x.of
+	sides := [...]string{loads[of.Hot].Name, loads[of.Cold].Name}
+	of.Hot, of.Cold = 0, 0
+	return struct {
+		Exchanger
+		Sides [2]string
+	}{of, sides}
 }
 
 // Observe takes in the next minute of a load, with the hour of the week in which it began.
@@ -40,7 +55,7 @@ func NewPlant(cfg Config) *Plant {
 // waits for the other side's minute, at most a quarter of an hour.
 func (p *Plant) Observe(load int, m Minute, hour int) {
 	j := p.judges[load]
-	if !j.target.ByExchanger {
+	if !j.target.ByExchanger || j.exchange == nil {
 		j.Observe(&m, j.expected(&m, hour))
 	}
 	if x := j.exchange; x != nil {
