@@ -206,15 +206,18 @@ func (t *Table) fill(rows []dutyPoint) error {
 		slices.Sort(at)
 		t.At = append(t.At, slices.Compact(at))
 		if n := len(t.At[k]); n < 2 {
-			return fmt.Errorf("table has %d places of its %s tag; want at least two", n, [...]string{"first", "second"}[k])
+			return fmt.Errorf("table has %d value of its %s tag; want at least two", n, [...]string{"first", "second"}[k])
 		}
 	}
 	columns := 1
 	if len(t.At) == 2 {
 		columns = len(t.At[1])
 	}
-	if want := len(t.At[0]) * columns; len(rows) != want {
-		return fmt.Errorf("has %d rows, and the places of its tags make %d; want each pair once", len(rows), want)
+	switch want := len(t.At[0]) * columns; {
+	case len(rows) != want && columns == 1:
+		return fmt.Errorf("has %d rows for %d values of its tag; want each value once", len(rows), want)
+	case len(rows) != want:
+		return fmt.Errorf("has %d rows, and the values of its tags make %d; want each pair once", len(rows), want)
 	}
 	t.Duty = make([]float64, len(rows))
 	seen := make([]bool, len(rows))
@@ -225,7 +228,7 @@ func (t *Table) fill(rows []dutyPoint) error {
 			i = i*columns + j
 		}
 		if seen[i] {
-			return fmt.Errorf("row %d has the place of one before it", n+1)
+			return fmt.Errorf("row %d has the values of one before it", n+1)
 		}
 		t.Duty[i], seen[i] = p.duty, true
 	}

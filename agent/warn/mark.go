@@ -2,7 +2,6 @@ package warn
 
 import (
 	"cmp"
-	"errors"
 	"fmt"
 	"slices"
 	"strings"
@@ -91,7 +90,7 @@ func (r *Roll) Shelve(s Shelf) error {
 	}
 	switch over := s.Until - s.At; {
 	case over <= 0:
-		return errors.New("until is not after now")
+		return fmt.Errorf("until %s is not after now, %s", time.Unix(0, s.Until).UTC().Format(time.RFC3339), time.Unix(0, s.At).UTC().Format(time.RFC3339))
 	case over > MostShelfTime:
 		return fmt.Errorf("until is %v away; a shelf is for %v at most", time.Duration(over).Round(time.Minute), time.Duration(MostShelfTime))
 	}

@@ -49,7 +49,7 @@ func (p *page) clean(x *Exchanger) (term, bool) {
 // capacity writes the capacity rate of a side, kW/K, and its inlet.
 func (p *page) capacity(s *exchanger.Stream, side, words string) term {
 	m := p.given("m"+side, "mass flow of the "+words, s.Flow, "kg/s", place(s.Flow, fine), "minute before")
-	c := p.given("cp"+side, "its specific heat", s.Cp/1e3, "kJ/kg/K", place(s.Cp/1e3, fine), "minute before")
+	c := p.given("cp"+side, "its specific heat", s.Cp/1e3, "kJ/(kg K)", place(s.Cp/1e3, fine), "minute before")
 	p.at["flow "+side] = m
 	p.at["inlet "+side] = p.given("T"+side, "its inlet temperature", s.Inlet, "K", place(s.Inlet, fine), "minute before")
 	return p.worked("C"+side, "its capacity rate", m.times(c), s.Capacity()/1e3, "kW/K", place(s.Capacity()/1e3, fine), "")

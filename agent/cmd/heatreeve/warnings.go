@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"slices"
+	"time"
 
 	"heatreeve/agent"
 	"heatreeve/agent/warn"
@@ -64,7 +65,7 @@ func runWarnings(ctx context.Context, c *call) error {
 }
 
 func tellStanding(w io.Writer, s *agent.Standing) {
-	fmt.Fprintln(w, wrapped(fmt.Sprintf("%s, up to %s", s.Site, s.At.Format("2006-01-02 15:04 -07:00")), ""))
+	fmt.Fprintln(w, wrapped(fmt.Sprintf("%s, up to %s", s.Site, s.At.Format(toTheMinute)), ""))
 	if len(s.Warnings) == 0 {
 		fmt.Fprintln(w, "no warnings")
 	}
@@ -72,24 +73,36 @@ func tellStanding(w io.Writer, s *agent.Standing) {
 		tellWarning(w, &s.Warnings[i])
 	}
 	for _, f := range s.Shelves {
-		fmt.Fprintln(w, wrapped(fmt.Sprintf("shelf: %s of %s, until %s, by %s: %s", f.Kind, f.Subject, *f.Until, f.By, f.Reason), "    "))
+		fmt.Fprintln(w, wrapped(fmt.Sprintf("shelf: %s of %s, until %s, by %s: %s", f.Kind, f.Subject, clockOf(*f.Until), f.By, f.Reason), "    "))
 	}
 	fmt.Fprintln(w, "For information only: no safety function, no alarm of record.")
 }
 
+// toTheMinute is how a time is told to people, with its offset to UTC.
+const toTheMinute = "2006-01-02 15:04 -07:00"
+
+// clockOf tells a time of a document, which has the offset of the plant, as events are.
+func clockOf(stamp string) string {
+	t, err := time.Parse(time.RFC3339, stamp)
+	if err != nil {
+		return stamp
+	}
+	return t.Format(toTheMinute)
+}
+
 func tellWarning(w io.Writer, d *warn.Document) {
-	line := func(text string) { fmt.Fprintln(w, wrapped("  "+text, "    ")) }
-	fmt.Fprintln(w, wrapped(fmt.Sprintf("\n%s: %s, %s", d.Subject, d.Kind, d.State), "    "))
+	line := func(text string) { fmt.Fprintln(w, set("  ", "      ", fields(text))) }
+	fmt.Fprintln(w, "\n"+wrapped(fmt.Sprintf("%s: %s, %s", d.Subject, d.Kind, d.State), "    "))
 	if d.Deviation != nil && d.Active {
 		line("now " + warn.Deviation(d.Kind, *d.Deviation))
 	}
 	if d.Greatest != nil {
 		line("greatest " + warn.Deviation(d.Kind, *d.Greatest))
 	}
-	line("since " + d.Since)
-	line("raised " + d.Begin)
+	line("since " + clockOf(d.Since))
+	line("raised " + clockOf(d.Begin))
 	if d.End != nil {
-		line("over " + *d.End)
+		line("over " + clockOf(*d.End))
 	}
 	if d.Times > 1 {
 		line(fmt.Sprintf("has begun %d times", d.Times))
@@ -98,7 +111,7 @@ func tellWarning(w io.Writer, d *warn.Document) {
 		line(fmt.Sprintf("%d more before it were not acknowledged", d.Earlier))
 	}
 	if m := d.Acknowledged; m != nil {
-		line(fmt.Sprintf("acknowledged %s by %s: %s", m.At, m.By, m.Reason))
+		line(fmt.Sprintf("acknowledged %s by %s: %s", clockOf(m.At), m.By, m.Reason))
 	}
 	for i, x := range d.Causes {
 		line(fmt.Sprintf("cause %d, weight %.2f: %s", i+1, x.Weight, x.Says))
