@@ -142,6 +142,10 @@ func (x *Exchange) weigh() {
 // duty is the mean of both sides, W.
 func (s *Standing) duty() float64 { return (math.Abs(s.Gives) + math.Abs(s.Takes)) / 2 }
 
+// mostRatioError is the uncertainty of ln(UA/UA_clean) from which it tells nothing. Common
+// practice, no source.
+const mostRatioError = 1
+
 // conductance tells that of the window, and lets it count where it is well told.
 func (x *Exchange) conductance(s *Standing, first int64) {
 	var err error
@@ -153,7 +157,10 @@ func (x *Exchange) conductance(s *Standing, first int64) {
 	if !x.of.Calibrated {
 		s.RatioError = math.Hypot(s.RatioError, s.Errors.Ratio)
 	}
-	s.FoulingError = s.RatioError / s.Observed.Conductance
+	if s.FoulingError = s.RatioError / s.Observed.Conductance; !(s.RatioError < mostRatioError) {
+		s.Why, s.RatioError, s.FoulingError = "the readings are too unsure to tell the conductance", 0, 0
+		return
+	}
 	if s.Observed.IllConditioned {
 		s.Why = "the effectiveness is so near its limit that it does not tell the conductance"
 		return

@@ -8,13 +8,14 @@ import (
 )
 
 // follow gives a window to the monitor each time that its minutes are new, whole, expected
-// and steady.
+// and steady. What is off by many times what is expected is no scatter of that: nothing to
+// speak of was.
 func (j *Judge) follow(g *Grounds) {
-	if j.Block++; j.Block < j.lasting || !g.Compared() || g.Moving > 0 || g.Expected == 0 {
+	e := math.Abs(g.Expected)
+	if j.Block++; j.Block < j.lasting || !g.Compared() || g.Moving > 0 || !(math.Abs(g.Deviation) < 10*e) {
 		return
 	}
 	j.Block = 0
-	e := math.Abs(g.Expected)
 	j.Drift.Observe(j.Window[0].Start, g.Deviation/e, g.Systematic/e, g.Random/e)
 	g.Drift = j.Drift.Drift()
 }
@@ -52,9 +53,9 @@ func (j *Judge) warn(g *Grounds) {
 			j.clear(s.kind, now)
 		}
 	}
-	if j.Drift.Side == 0 || j.standing(WarnShort) != nil || j.standing(WarnOver) != nil {
-		j.clear(WarnDrifting, now) // it has come back, or gone on to be one of these
-	} else if g.Compared() || j.standing(WarnDrifting) == nil {
+	if j.Drift.Side == 0 || over || j.standing(WarnShort) != nil || j.standing(WarnOver) != nil {
+		j.clear(WarnDrifting, now) // it has come back, rests, or has gone on to be one of these
+	} else if g.Compared() {
 		j.raise(j.warning(WarnDrifting, j.Drift.Since, g), now)
 	}
 }
