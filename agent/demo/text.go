@@ -92,11 +92,16 @@ func fit(text string, width int) string {
 	return string([]rune(text)[:max(width-1, 0)]) + "…"
 }
 
-// wrap breaks text between words into lines of the width.
+// hardSpace joins two words for wrap; no text of the demo has it.
+const hardSpace = "\x00"
+
+// wrap breaks text between words into lines of the width; a percent sign stays with its
+// number.
 func wrap(text string, width int) []string {
 	var lines []string
 	line := ""
-	for _, word := range strings.Fields(text) {
+	for _, word := range strings.Fields(strings.ReplaceAll(text, " %", hardSpace+"%")) {
+		word = strings.ReplaceAll(word, hardSpace, " ")
 		switch {
 		case line == "":
 			line = word

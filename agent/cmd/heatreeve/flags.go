@@ -51,6 +51,9 @@ func (c *call) parseOptions() error {
 // there is not.
 func (c *call) unknownOption(err error) string {
 	name, ok := strings.CutPrefix(err.Error(), "flag provided but not defined: -")
+	if text, bad := strings.CutSuffix(err.Error(), "for flag -for: parse error"); bad {
+		return text + "for --for: write a duration, such as 90m or 8h, a day as 24h"
+	}
 	if !ok {
 		return err.Error()
 	}

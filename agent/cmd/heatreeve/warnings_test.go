@@ -1,6 +1,7 @@
 package main
 
 import (
+	"io"
 	"strings"
 	"testing"
 	"time"
@@ -28,5 +29,14 @@ For information only: no safety function, no alarm of record.
 `
 	if out.String() != want {
 		t.Errorf("got\n%s\nwant\n%s", out.String(), want)
+	}
+}
+
+// A duration in days is not one that --for takes: the error says what is.
+func TestShelfLengthIsExplained(t *testing.T) {
+	var errs strings.Builder
+	status := run(t.Context(), []string{"shelve", "milk", "--for", "40d"}, io.Discard, &errs)
+	if status != exitWrong || !strings.Contains(errs.String(), `"40d" for --for: write a duration, such as 90m or 8h, a day as 24h`) {
+		t.Errorf("status %d: %s", status, errs.String())
 	}
 }
