@@ -105,6 +105,7 @@ func (a *Agent) mark(r *rhythm, o Order) marked {
 	}
 	l.board = l.accounts.roll.Board(l.accounts.watched)
 	if a.commit(r, time.Now(), true) {
+		a.publish(r) // so that who asks next is told
 		return marked{done: done(events)}
 	}
 	l.accounts.roll, l.forced = before, true

@@ -62,7 +62,7 @@ func TestWarningIsOneEventThroughKills(t *testing.T) {
 		feedFlow(l, cut, cut+20, 2) // is lost with the process
 		kill()
 	}
-	if !strings.Contains(told[0], "below what is expected; since ") || !strings.Contains(told[4], "at the greatest 30") {
+	if !strings.Contains(told[0], "below what is expected when it was raised; since ") || !strings.Contains(told[4], "at the greatest 30") {
 		t.Errorf("%q", told)
 	}
 }

@@ -36,6 +36,9 @@ func tableLines(s *view.Snapshot, o TableOptions) []string {
 	if o.Width <= 0 {
 		o.Width = usualWidth
 	}
+	if o.Zone == nil {
+		o.Zone = time.UTC
+	}
 	lines := []string{fit(heading(s, o.Zone), o.Width), ""}
 	lines = append(lines, grid(s, o)...)
 	lines = append(lines, "")
@@ -44,7 +47,7 @@ func tableLines(s *view.Snapshot, o TableOptions) []string {
 	}
 	for i := range s.Exchangers {
 		if x, ok := s.Told(i); ok {
-			lines = append(lines, wrap(exchangerLine(x), o.Width)...)
+			lines = append(lines, wrap(exchangerLine(x, o.Zone), o.Width)...)
 		}
 	}
 	for _, l := range s.Warnings.Listed() {
@@ -78,9 +81,6 @@ func remarks(l *view.Load, width int) []string {
 func heading(s *view.Snapshot, zone *time.Location) string {
 	if s.At == 0 {
 		return s.Site + ", waiting for the first readings"
-	}
-	if zone == nil {
-		zone = time.UTC
 	}
 	return s.Site + ", " + time.Unix(0, s.At).In(zone).Format("Mon 2 Jan 2006 15:04:05 MST")
 }

@@ -98,15 +98,16 @@ func ratio(x float64) *float64 {
 	return &x
 }
 
-// Text tells the warning in a line, as its event does.
+// Text tells the warning in a line, as its event does: while it stands, the figures are those
+// of when it was raised.
 func (e *Entry) Text(place *time.Location) string {
 	var b strings.Builder
 	if e.End == 0 {
-		fmt.Fprintf(&b, "%s: %s", e.Kind, Deviation(e.Kind, e.Now))
+		fmt.Fprintf(&b, "%s: %s when it was raised", e.Kind, Deviation(e.Kind, e.Now))
 	} else {
-		fmt.Fprintf(&b, "%s, over", e.Kind)
+		fmt.Fprintf(&b, "%s, over; at the greatest %s", e.Kind, Deviation(e.Kind, e.Greatest))
 	}
-	fmt.Fprintf(&b, "; at the greatest %s; since %s", Deviation(e.Kind, e.Greatest), clock(e.Since, place))
+	fmt.Fprintf(&b, "; since %s", clock(e.Since, place))
 	if e.Times > 1 {
 		fmt.Fprintf(&b, "; has begun %d times", e.Times)
 	}

@@ -312,7 +312,7 @@ func TestSchema(t *testing.T) {
 func TestText(t *testing.T) {
 	c := course{number: numbers()}
 	c.begin(base)
-	if got, want := c.Entries[0].Text(time.UTC), "short: 20.0 % below what is expected; at the greatest 20.0 % below what is expected; since 2023-11-14 21:14 +00:00; first cause: the flow is low"; got != want {
+	if got, want := c.Entries[0].Text(time.UTC), "short: 20.0 % below what is expected when it was raised; since 2023-11-14 21:14 +00:00; first cause: the flow is low"; got != want {
 		t.Errorf("%q\nwant %q", got, want)
 	}
 	c.end(base, base+hour)
