@@ -5,6 +5,8 @@ import (
 	"math"
 	"net/http"
 	"net/url"
+	"slices"
+	"strings"
 	"time"
 
 	"heatreeve/agent/account"
@@ -58,8 +60,17 @@ func eventQueryOf(v url.Values) (q EventQuery, err error) {
 	return q, nil
 }
 
+// eventKinds are those that there are.
+var eventKinds = []string{
+	eventStarted, eventStopped, eventRules, eventState, eventDisk, eventLost, eventClock, eventDamage,
+	eventWarning, eventAcknowledged, eventShelved, eventUnshelved,
+}
+
 // span is the time that q asks for.
 func (q *EventQuery) span(zone *time.Location) (from, to int64, err error) {
+	if q.Kind != "" && !slices.Contains(eventKinds, q.Kind) {
+		return 0, 0, queryErrorf("kind %q is none; there are %s", q.Kind, strings.Join(eventKinds, ", "))
+	}
 	from, to = math.MinInt64, math.MaxInt64
 	if q.From != "" {
 		if from, err = account.Instant(q.From, zone); err != nil {
