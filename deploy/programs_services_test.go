@@ -14,7 +14,7 @@ import (
 )
 
 // patience bounds every wait; on a good day none comes near it.
-const patience = 60 * time.Second
+const patience = 150 * time.Second
 
 func within(t *testing.T) context.Context {
 	t.Helper()
