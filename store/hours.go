@@ -242,12 +242,17 @@ func (s *Store) builtFrom(tx *bolt.Tx, all []Hour, from, to int64, load uint32) 
 	c := loadCursor{tx.Bucket(bucketHours).Cursor(), load / loadsAKey}
 	k, v := c.seek(from)
 	for range hoursAView {
-		if k == nil || keyTime(k) >= to {
+		if k == nil {
 			return all, faults, to
 		}
+		beyond := keyTime(k) >= to // the end, unless the key itself is damaged
 		var err error
-		if all, err = parseHours(all, k, v, func(l uint32) bool { return l == load }); err != nil {
+		all, err = parseHours(all, k, v, func(l uint32) bool { return l == load && !beyond })
+		switch {
+		case err != nil:
 			faults = append(faults, s.damage("hours", k, err))
+		case beyond:
+			return all, faults, to
 		}
 		k, v = c.next()
 	}
