@@ -129,11 +129,11 @@ func toldEvent(e *store.Event, zone *time.Location) Event {
 type happenings struct {
 	history history
 	run     string
-	turn    chan struct{}
+	turn    turn
 }
 
 func newEvents(r *reports) *happenings {
-	return &happenings{history: r.history, run: r.run, turn: make(chan struct{}, 1)}
+	return &happenings{history: r.history, run: r.run, turn: make(turn, 1)}
 }
 
 func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -143,13 +143,10 @@ func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	select {
-	case s.turn <- struct{}{}:
-		defer func() { <-s.turn }()
-	default:
-		http.Error(w, "other events are being told; try again in a while", http.StatusServiceUnavailable)
+	if !s.turn.taken(w, "other events are being told; try again in a while") {
 		return
 	}
+	defer s.turn.free()
 	all, err := s.history.events(r.Context(), q)
 	if err != nil {
 		refuse(w, err)

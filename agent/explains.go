@@ -35,11 +35,11 @@ type explains struct {
 	site      *site.Site
 	run       string // names this run of the agent
 	questions chan<- question
-	turn      chan struct{} // holds one while an explanation is in the making
+	turn      turn // holds one while an explanation is in the making
 }
 
 func newExplains(r *reports, s *site.Site, questions chan<- question) *explains {
-	return &explains{history: r.history, site: s, run: r.run, questions: questions, turn: make(chan struct{}, 1)}
+	return &explains{history: r.history, site: s, run: r.run, questions: questions, turn: make(turn, 1)}
 }
 
 func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -49,13 +49,10 @@ func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	select {
-	case s.turn <- struct{}{}:
-		defer func() { <-s.turn }()
-	default:
-		http.Error(w, "another explanation is in the making; try again in a while", http.StatusServiceUnavailable)
+	if !s.turn.taken(w, "another explanation is in the making; try again in a while") {
 		return
 	}
+	defer s.turn.free()
 	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(explainTime + reportStall)) // where it cannot be set, there is no bound
 	ctx, cancel := context.WithTimeout(r.Context(), explainTime)
 	defer cancel()

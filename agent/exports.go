@@ -28,12 +28,12 @@ const (
 // it waits for who asked.
 type exports struct {
 	history history
-	run     string        // names this run of the agent
-	turn    chan struct{} // holds one while an export is under way
+	run     string // names this run of the agent
+	turn    turn   // holds one while an export is under way
 }
 
 func newExports(r *reports) *exports {
-	return &exports{history: r.history, run: r.run, turn: make(chan struct{}, 1)}
+	return &exports{history: r.history, run: r.run, turn: make(turn, 1)}
 }
 
 func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -48,13 +48,11 @@ func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	select {
-	case s.turn <- struct{}{}:
-		defer func() { <-s.turn }()
-		x.serve(r.Context(), w)
-	default:
-		http.Error(w, "another export is under way; try again when it has ended", http.StatusServiceUnavailable)
+	if !s.turn.taken(w, "another export is under way; try again when it has ended") {
+		return
 	}
+	defer s.turn.free()
+	x.serve(r.Context(), w)
 }
 
 // serve writes the answer. One that breaks off has no proper end, so that nobody takes it
