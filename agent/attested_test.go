@@ -7,6 +7,7 @@ import (
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 	"heatreeve/ingest"
 	"heatreeve/store"
 )
@@ -84,7 +85,7 @@ func TestAttestedToday(t *testing.T) {
 	}
 	h := historyIn(t, l.store, "Asia/Kathmandu")
 	h.through = now
-	r, err := h.report(t.Context(), Query{From: "2023-11-16", By: "day", Loads: []string{"main"}})
+	r, err := h.report(t.Context(), answer.Query{From: "2023-11-16", By: "day", Loads: []string{"main"}})
 	if err != nil {
 		t.Fatal(err)
 	}

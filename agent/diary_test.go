@@ -14,6 +14,7 @@ import (
 
 	bolt "go.etcd.io/bbolt"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/site"
 	"heatreeve/store"
 )
@@ -216,7 +217,7 @@ func TestReportHasEvents(t *testing.T) {
 		{at(time.Hour), "", []string{eventClock, eventStopped}},
 		{at(-time.Hour), at(time.Hour), []string{eventStarted}},
 	} {
-		r, err := h.report(context.Background(), Query{From: tt.from, To: tt.to, By: "hour"})
+		r, err := h.report(context.Background(), answer.Query{From: tt.from, To: tt.to, By: "hour"})
 		if err != nil {
 			t.Fatal(err)
 		}

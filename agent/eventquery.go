@@ -4,61 +4,17 @@ import (
 	"context"
 	"math"
 	"net/http"
-	"net/url"
 	"slices"
 	"strings"
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 	"heatreeve/store"
 )
 
 // eventsPath is where what happened is told.
 const eventsPath = "/events"
-
-// EventQuery says which events are wanted.
-type EventQuery struct {
-	From, To      string // instants as [account.Instant] reads them; empty for all
-	Kind, Subject string // empty for all
-	Zone          string // IANA name of the time zone; empty for the site's
-}
-
-// Events are what happened, by At.
-type Events struct {
-	Site   string  `json:"site"`
-	Zone   string  `json:"zone"`
-	Events []Event `json:"events"`
-	Unused int     `json:"unused"` // records that cannot be read
-}
-
-func (q *EventQuery) fields() map[string]*string {
-	return map[string]*string{"from": &q.From, "to": &q.To, "kind": &q.Kind, "subject": &q.Subject, "zone": &q.Zone}
-}
-
-func (q EventQuery) values() url.Values {
-	v := url.Values{}
-	for name, field := range q.fields() {
-		if *field != "" {
-			v.Set(name, *field)
-		}
-	}
-	return v
-}
-
-func eventQueryOf(v url.Values) (q EventQuery, err error) {
-	fields := q.fields()
-	for name, texts := range v {
-		switch field := fields[name]; {
-		case field == nil:
-			return q, queryErrorf("%s is no parameter; known: from, to, kind, subject, zone", name)
-		case len(texts) != 1:
-			return q, queryErrorf("%s is given %d times", name, len(texts))
-		default:
-			*field = texts[0]
-		}
-	}
-	return q, nil
-}
 
 // eventKinds are those that there are.
 var eventKinds = []string{
@@ -67,42 +23,42 @@ var eventKinds = []string{
 }
 
 // span is the time that q asks for.
-func (q *EventQuery) span(zone *time.Location) (from, to int64, err error) {
+func spanOf(q *answer.EventQuery, zone *time.Location) (from, to int64, err error) {
 	if q.Kind != "" && !slices.Contains(eventKinds, q.Kind) {
-		return 0, 0, queryErrorf("kind %q is none; there are %s", q.Kind, strings.Join(eventKinds, ", "))
+		return 0, 0, answer.Wrongf("kind %q is none; there are %s", q.Kind, strings.Join(eventKinds, ", "))
 	}
 	from, to = math.MinInt64, math.MaxInt64
 	if q.From != "" {
 		if from, err = account.Instant(q.From, zone); err != nil {
-			return 0, 0, queryErrorf("from %v", err)
+			return 0, 0, answer.Wrongf("from %v", err)
 		}
 	}
 	if q.To != "" {
 		if to, err = account.Instant(q.To, zone); err != nil {
-			return 0, 0, queryErrorf("to %v", err)
+			return 0, 0, answer.Wrongf("to %v", err)
 		}
 	}
 	if from >= to {
-		return 0, 0, queryErrorf("to %s is not after from %s", q.To, q.From)
+		return 0, 0, answer.Wrongf("to %s is not after from %s", q.To, q.From)
 	}
 	return from, to, nil
 }
 
 // events answers q.
-func (h *history) events(ctx context.Context, q EventQuery) (*Events, error) {
+func (h *history) events(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
 	zone := h.zone
 	if zone == nil && q.Zone == "" {
 		zone = time.UTC
 	}
-	zone, err := Query{Zone: q.Zone}.place(zone)
+	zone, err := placeOf(q.Zone, zone)
 	if err != nil {
 		return nil, err
 	}
-	from, to, err := q.span(zone)
+	from, to, err := spanOf(&q, zone)
 	if err != nil {
 		return nil, err
 	}
-	out := &Events{Site: h.site, Zone: zone.String(), Events: []Event{}}
+	out := &answer.Events{Site: h.site, Zone: zone.String(), Events: []answer.Event{}}
 	for e, err := range h.db.Events(from, to) {
 		switch {
 		case ctx.Err() != nil:
@@ -116,8 +72,8 @@ func (h *history) events(ctx context.Context, q EventQuery) (*Events, error) {
 	return out, nil
 }
 
-func toldEvent(e *store.Event, zone *time.Location) Event {
-	told := Event{At: time.Unix(0, e.At).In(zone), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
+func toldEvent(e *store.Event, zone *time.Location) answer.Event {
+	told := answer.Event{At: time.Unix(0, e.At).In(zone), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
 	if e.Until != 0 {
 		until := time.Unix(0, e.Until).In(zone)
 		told.Until = &until
@@ -138,7 +94,7 @@ func newEvents(r *reports) *happenings {
 
 func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	tellRun(w, r, s.run)
-	q, err := eventQueryOf(r.URL.Query())
+	q, err := answer.EventQueryOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
 		return
@@ -157,9 +113,9 @@ func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 
 // Happened tells the events of a history: a data folder, or a copy of its file. Where an agent
 // runs on the folder, it is asked. What is wrong with q is a [*QueryError].
-func Happened(ctx context.Context, data string, q EventQuery) (e *Events, err error) {
+func Happened(ctx context.Context, data string, q answer.EventQuery) (e *answer.Events, err error) {
 	err = reach(data, func(a address) (err error) {
-		e, err = request[Events](ctx, a, eventsPath, q.values(), reportTime, answerBytes)
+		e, err = request[answer.Events](ctx, a, eventsPath, q.Values(), reportTime, answerBytes)
 		return err
 	}, func(h history) (err error) {
 		e, err = h.events(ctx, q)

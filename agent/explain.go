@@ -4,11 +4,11 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"net/url"
 	"slices"
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
@@ -16,50 +16,9 @@ import (
 	"heatreeve/thermo/unit/near"
 )
 
-// Explanation says which figure is to be explained.
-type Explanation struct {
-	Load string
-	At   string // instant as [account.Moment] reads it; empty for the newest figure
-	Zone string // IANA name of the time zone; empty for the site's
-}
-
-func (q *Explanation) fields() map[string]*string {
-	return map[string]*string{"load": &q.Load, "at": &q.At, "zone": &q.Zone}
-}
-
-// values are the parameters of q as the agent's page takes them.
-func (q Explanation) values() url.Values {
-	v := url.Values{}
-	for name, field := range q.fields() {
-		if *field != "" {
-			v.Set(name, *field)
-		}
-	}
-	return v
-}
-
-// explanationOf reads the parameters back.
-func explanationOf(v url.Values) (q Explanation, err error) {
-	fields := q.fields()
-	for name, texts := range v {
-		switch field := fields[name]; {
-		case field == nil:
-			return q, queryErrorf("%s is no parameter; known: load, at, zone", name)
-		case len(texts) != 1:
-			return q, queryErrorf("%s is given %d times", name, len(texts))
-		default:
-			*field = texts[0]
-		}
-	}
-	if q.Load == "" {
-		return q, queryErrorf("load is missing; name the load whose figure is to be explained")
-	}
-	return q, nil
-}
-
 // instant is what q asks for: the beginning of an interval of the grid. The newest is the
 // last that is accounted for.
-func (h *history) instant(q Explanation) (at int64, err error) {
+func (h *history) instant(q answer.Explanation) (at int64, err error) {
 	through := h.through()
 	if through <= 0 {
 		return 0, fmt.Errorf("%w yet; ask again once the first readings are committed", errNoRecord)
@@ -67,15 +26,15 @@ func (h *history) instant(q Explanation) (at int64, err error) {
 	if q.At == "" {
 		return through - 1, nil
 	}
-	zone, err := Query{Zone: q.Zone}.place(h.zone)
+	zone, err := placeOf(q.Zone, h.zone)
 	if err != nil {
 		return 0, err
 	}
 	if at, err = account.Moment(q.At, zone); err != nil {
-		return 0, queryErrorf("at %v", err)
+		return 0, answer.Wrongf("at %v", err)
 	}
 	if at >= through {
-		return 0, queryErrorf("at %s: the history goes up to %s", q.At, exactly(time.Unix(0, through).In(zone)))
+		return 0, answer.Wrongf("at %s: the history goes up to %s", q.At, exactly(time.Unix(0, through).In(zone)))
 	}
 	return at, nil
 }
@@ -83,7 +42,7 @@ func (h *history) instant(q Explanation) (at int64, err error) {
 func exactly(t time.Time) string { return t.Format("2006-01-02 15:04:05 -07:00") }
 
 // explain answers q from what is stored.
-func (h *history) explain(ctx context.Context, q Explanation) (*working.Working, error) {
+func (h *history) explain(ctx context.Context, q answer.Explanation) (*working.Working, error) {
 	at, err := h.instant(q)
 	if err != nil {
 		return nil, err
@@ -161,9 +120,9 @@ func loadIn(s *site.Site, name string) (int, error) {
 		return i, nil
 	}
 	if guess := near.Names(name, all); len(guess) > 0 {
-		return 0, queryErrorf("load %q is not in the site file of then; did you mean %q?", name, guess[0])
+		return 0, answer.Wrongf("load %q is not in the site file of then; did you mean %q?", name, guess[0])
 	}
-	return 0, queryErrorf("load %q is not in the site file of then; there are: %s", name, listed(all))
+	return 0, answer.Wrongf("load %q is not in the site file of then; there are: %s", name, listed(all))
 }
 
 // minuteOf reads the record of the minute that g lies in.

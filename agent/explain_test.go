@@ -11,6 +11,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
@@ -105,7 +106,7 @@ func TestTheWorkingIsTheFigure(t *testing.T) {
 	defer k.shut()
 	h, s := k.history(), newMaltings(t).site
 	for i := range s.Loads {
-		w, err := h.explain(t.Context(), Explanation{Load: s.Loads[i].Name})
+		w, err := h.explain(t.Context(), answer.Explanation{Load: s.Loads[i].Name})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -168,7 +169,7 @@ func TestThePastIsExplainedByTheSiteFileOfThen(t *testing.T) {
 	h := history{db: l.store, zone: time.UTC, through: l.through.Load}
 	at := func(s int64) string { return clock.Add(time.Duration(s) * time.Second).UTC().Format(time.RFC3339) }
 	for s, want := range map[int64]float64{400: 193, 1000: 150} {
-		w, err := h.explain(t.Context(), Explanation{Load: "main", At: at(s)})
+		w, err := h.explain(t.Context(), answer.Explanation{Load: "main", At: at(s)})
 		if err != nil || w.At.UnixNano() != clock.UnixNano()+s*sec {
 			t.Fatalf("at %d s: %+v, %v", s, w, err)
 		}
@@ -177,28 +178,28 @@ func TestThePastIsExplainedByTheSiteFileOfThen(t *testing.T) {
 		}
 	}
 	for _, tt := range []struct {
-		q    Explanation
+		q    answer.Explanation
 		want string
 	}{
-		{Explanation{Load: "annex", At: at(400)}, `load "annex" is not in the site file of then; there are: main`},
-		{Explanation{Load: "mian", At: at(400)}, `load "mian" is not in the site file of then; did you mean "main"?`},
-		{Explanation{Load: "main", At: at(5000)}, "the history goes up to 2023-11-14 22:33:54 +00:00"},
-		{Explanation{Load: "main", At: "yesterday"}, `at "yesterday" is no date`},
-		{Explanation{Load: "main", At: "2026-10-25T10:00", Zone: "Atlantis"}, `zone "Atlantis" is not known`},
+		{answer.Explanation{Load: "annex", At: at(400)}, `load "annex" is not in the site file of then; there are: main`},
+		{answer.Explanation{Load: "mian", At: at(400)}, `load "mian" is not in the site file of then; did you mean "main"?`},
+		{answer.Explanation{Load: "main", At: at(5000)}, "the history goes up to 2023-11-14 22:33:54 +00:00"},
+		{answer.Explanation{Load: "main", At: "yesterday"}, `at "yesterday" is no date`},
+		{answer.Explanation{Load: "main", At: "2026-10-25T10:00", Zone: "Atlantis"}, `zone "Atlantis" is not known`},
 	} {
 		_, err := h.explain(t.Context(), tt.q)
-		var wrong *QueryError
+		var wrong *answer.QueryError
 		if !errors.As(err, &wrong) || !strings.Contains(err.Error(), tt.want) {
 			t.Errorf("%+v: %v, want %q", tt.q, err, tt.want)
 		}
 	}
-	_, err := h.explain(t.Context(), Explanation{Load: "main", At: at(-500)})
+	_, err := h.explain(t.Context(), answer.Explanation{Load: "main", At: at(-500)})
 	if !errors.Is(err, errNoRecord) || !strings.Contains(err.Error(), `of load "main" at 2023-11-14 22:05:40 +00:00, nor readings of its tags before`) {
 		t.Errorf("before the beginning: %v", err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
 	cancel()
-	if _, err := h.explain(ctx, Explanation{Load: "main"}); !errors.Is(err, context.Canceled) {
+	if _, err := h.explain(ctx, answer.Explanation{Load: "main"}); !errors.Is(err, context.Canceled) {
 		t.Errorf("after the end of the question: %v", err)
 	}
 }
@@ -220,7 +221,7 @@ func TestARecordIsExplainedWhereReadingsAreGone(t *testing.T) {
 		t.Fatal(err)
 	}
 	h := history{db: l.store, zone: time.UTC, through: l.through.Load}
-	w, err := h.explain(t.Context(), Explanation{Load: "main", At: time.Unix(0, start+30e9).UTC().Format(time.RFC3339)})
+	w, err := h.explain(t.Context(), answer.Explanation{Load: "main", At: time.Unix(0, start+30e9).UTC().Format(time.RFC3339)})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -244,7 +245,7 @@ func TestARecordIsExplainedWhereReadingsAreGone(t *testing.T) {
 	}
 	defer empty.Close()
 	h.db = empty
-	if _, err := h.explain(t.Context(), Explanation{Load: "main"}); err == nil || !strings.Contains(err.Error(), "the history has no site file") {
+	if _, err := h.explain(t.Context(), answer.Explanation{Load: "main"}); err == nil || !strings.Contains(err.Error(), "the history has no site file") {
 		t.Errorf("without a site file: %v", err)
 	}
 }
@@ -268,7 +269,7 @@ func TestNoFigureYetIsNotExplained(t *testing.T) {
 	s := &explains{site: parsed(t, benchSite), questions: questions}
 	name := s.site.Loads[0].Name
 	go func() { (<-questions).answer <- working.Subject{Site: s.site} }()
-	w, err := s.explain(t.Context(), Explanation{Load: name})
+	w, err := s.explain(t.Context(), answer.Explanation{Load: name})
 	if w != nil || !errors.Is(err, errNoRecord) || !strings.Contains(err.Error(), name) {
 		t.Errorf("%v, %v", w, err)
 	}
@@ -288,7 +289,7 @@ func TestWhatToLookAtFirst(t *testing.T) {
 	a := l.accounts
 	live := working.Of(working.Subject{Site: parsed(t, text), Basis: a.engine.Basis(0), Grounds: a.verdicts.Grounds(0), Evidence: a.verdicts.Evidence(0)})
 	h := history{db: l.store, zone: time.UTC, through: l.through.Load}
-	past, err := h.explain(t.Context(), Explanation{Load: "main"})
+	past, err := h.explain(t.Context(), answer.Explanation{Load: "main"})
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"heatreeve/agent/answer"
 	"net/http"
 	"time"
 
@@ -44,7 +45,7 @@ func newExplains(r *reports, s *site.Site, questions chan<- question) *explains 
 
 func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	tellRun(w, r, s.run)
-	q, err := explanationOf(r.URL.Query())
+	q, err := answer.ExplanationOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
 		return
@@ -67,7 +68,7 @@ func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	_ = e.Encode(x) // who asked has gone
 }
 
-func (s *explains) explain(ctx context.Context, q Explanation) (*working.Working, error) {
+func (s *explains) explain(ctx context.Context, q answer.Explanation) (*working.Working, error) {
 	if q.At != "" {
 		return s.history.explain(ctx, q)
 	}
@@ -125,9 +126,9 @@ func expecting(p *design.Plant, load int) *working.Exchanger {
 // Explain tells the working of a figure from a history: a data folder, or a copy of its
 // file. Where an agent runs on the folder, it is asked. What is wrong with q is a
 // [*QueryError].
-func Explain(ctx context.Context, data string, q Explanation) (w *working.Working, err error) {
+func Explain(ctx context.Context, data string, q answer.Explanation) (w *working.Working, err error) {
 	err = reach(data, func(a address) (err error) {
-		w, err = request[working.Working](ctx, a, explainPath, q.values(), explainTime, explanationBytes)
+		w, err = request[working.Working](ctx, a, explainPath, q.Values(), explainTime, explanationBytes)
 		return err
 	}, func(h history) (err error) {
 		w, err = h.explain(ctx, q)

@@ -10,6 +10,7 @@ import (
 	"strings"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/ingest/quality"
 	"heatreeve/store"
@@ -67,7 +68,7 @@ func (h *history) export(s Selection) (*export, error) {
 		return nil, err
 	}
 	if s.Format == parquetFormat {
-		return nil, queryErrorf("format %q: the agent's page gives csv and json; heatreeve export makes parquet of it", s.Format)
+		return nil, answer.Wrongf("format %q: the agent's page gives csv and json; heatreeve export makes parquet of it", s.Format)
 	}
 	x := &export{db: h.db, of: s.of(), json: s.Format == "json", through: h.through(), zone: time.UTC}
 	if h.zone != nil {

@@ -19,6 +19,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/ingest/quality"
 	"heatreeve/store"
@@ -87,7 +88,7 @@ func TestExportOfReadings(t *testing.T) {
 		}
 		text, err := exported(h, s)
 		if len(want) == 0 {
-			var wrong *QueryError
+			var wrong *answer.QueryError
 			if !errors.As(err, &wrong) || !strings.Contains(err.Error(), "is not after from") {
 				t.Errorf("%+v: %v", s, err)
 			}
@@ -292,7 +293,7 @@ func TestExportRefusals(t *testing.T) {
 		}
 		var b bytes.Buffer
 		err := Extract(t.Context(), dir, tt.Selection, &b, func(Progress) { t.Errorf("%+v: progress", tt.Selection) })
-		var wrong *QueryError
+		var wrong *answer.QueryError
 		if err == nil || !strings.Contains(err.Error(), tt.says) || errors.As(err, &wrong) != (tt.status == 400) || b.Len() > 0 {
 			t.Errorf("%+v: %v, %d bytes", tt.Selection, err, b.Len())
 		}

@@ -3,6 +3,7 @@ package agent
 import (
 	"context"
 	"errors"
+	"heatreeve/agent/answer"
 	"net/http"
 	"slices"
 	"strconv"
@@ -120,7 +121,7 @@ func (s *steady) extend() {
 // refuse says why there is no answer.
 func refuse(w http.ResponseWriter, err error) {
 	status := http.StatusInternalServerError
-	var wrong *QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong):
 		status = http.StatusBadRequest

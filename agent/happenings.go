@@ -3,27 +3,17 @@ package agent
 import (
 	"fmt"
 	"math"
-	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 )
 
 // mostEvents bounds the events of a report.
 const mostEvents = 1000
 
-// Event is what happened beside the accounts, such as a start of the agent.
-type Event struct {
-	At time.Time `json:"at"`
-	// Until is At where it took no time, and null while it lasts.
-	Until   *time.Time `json:"until"`
-	Kind    string     `json:"kind"`
-	Subject string     `json:"subject"` // name of a tag or load; may be empty
-	Text    string     `json:"text"`
-}
-
 // addEvents puts the events into the report that have a part in its time. One that goes as
 // far as the history has those since then as well: a stop comes after the last reading.
-func (h *history) addEvents(r *Report, plan account.Plan) {
+func (h *history) addEvents(r *answer.Report, plan account.Plan) {
 	to := plan.To
 	if to >= plan.Accounted() {
 		to = math.MaxInt64

@@ -11,6 +11,7 @@ import (
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 	"heatreeve/store"
 	"heatreeve/thermo/unit/near"
 )
@@ -30,12 +31,12 @@ type history struct {
 }
 
 // report answers q, or gives up when ctx ends.
-func (h *history) report(ctx context.Context, q Query) (*Report, error) {
-	zone, err := q.place(h.zone)
+func (h *history) report(ctx context.Context, q answer.Query) (*answer.Report, error) {
+	zone, err := placeOf(q.Zone, h.zone)
 	if err != nil {
 		return nil, err
 	}
-	plan, err := q.plan(zone, h.through())
+	plan, err := planOf(q, zone, h.through())
 	if err != nil {
 		return nil, err
 	}
@@ -48,7 +49,7 @@ func (h *history) report(ctx context.Context, q Query) (*Report, error) {
 		return nil, err
 	}
 	at := func(ns int64) time.Time { return time.Unix(0, ns).In(zone) }
-	r := &Report{Site: h.site, Zone: zone.String(), By: plan.By.String(), From: at(plan.From), To: at(plan.To), Demand: plan.Demand.Seconds(), Factor: CoverageFactor, Accounted: at(plan.Accounted())}
+	r := &answer.Report{Site: h.site, Zone: zone.String(), By: plan.By.String(), From: at(plan.From), To: at(plan.To), Demand: plan.Demand.Seconds(), Factor: answer.CoverageFactor, Accounted: at(plan.Accounted())}
 	if plan.From >= plan.Until() {
 		return nil, noRecord(r, chosen)
 	}
@@ -60,7 +61,7 @@ func (h *history) report(ctx context.Context, q Query) (*Report, error) {
 }
 
 // fill puts the chosen loads into the report.
-func (h *history) fill(ctx context.Context, r *Report, q Query, plan account.Plan, ids map[string]uint32, chosen []string) error {
+func (h *history) fill(ctx context.Context, r *answer.Report, q answer.Query, plan account.Plan, ids map[string]uint32, chosen []string) error {
 	periods := 0
 	for _, name := range chosen {
 		source := &records{db: h.db, load: ids[name], plan: plan, brief: q.Demand == 0}
@@ -84,7 +85,7 @@ func (h *history) fill(ctx context.Context, r *Report, q Query, plan account.Pla
 // errNoRecord says that there is nothing to report.
 var errNoRecord = errors.New("the history holds no record")
 
-func noRecord(r *Report, chosen []string) error {
+func noRecord(r *answer.Report, chosen []string) error {
 	end := "to " + wallClock(r.To)
 	if !r.To.After(r.From) { // no end was given, and the history has ended before
 		end = "on"
@@ -131,9 +132,9 @@ const mostNames = 20
 // unknown says that a name is not in the history, and what may have been meant.
 func unknown(kind, name string, known []string) error {
 	if guess := near.Names(name, known); len(guess) > 0 {
-		return queryErrorf("%s %q is not in the history; did you mean %q?", kind, name, guess[0])
+		return answer.Wrongf("%s %q is not in the history; did you mean %q?", kind, name, guess[0])
 	}
-	return queryErrorf("%s %q is not in the history; there are: %s", kind, name, listed(known))
+	return answer.Wrongf("%s %q is not in the history; there are: %s", kind, name, listed(known))
 }
 
 // listed are names in a row, the first of many.
@@ -147,7 +148,7 @@ func listed(names []string) string {
 
 // loadAccount is a [LoadReport] in the making.
 type loadAccount struct {
-	LoadReport
+	answer.LoadReport
 	begun  bool // the load has a record from before the end of the report
 	notes  []string
 	unused int // records that cannot be used
@@ -182,7 +183,7 @@ func (h *history) load(ctx context.Context, name string, source *records, most i
 			continue
 		}
 		if len(l.Periods) == most {
-			return l, queryErrorf("by %s there are more than %d periods; ask for a shorter time, longer periods or fewer loads", plan.By, mostPeriods)
+			return l, answer.Wrongf("by %s there are more than %d periods; ask for a shorter time, longer periods or fewer loads", plan.By, mostPeriods)
 		}
 		l.Periods = append(l.Periods, periodReport(&p, &plan))
 	}
@@ -240,7 +241,7 @@ func (l *loadAccount) cutNote(source *records) string {
 
 // addRegisters puts the registers beside the sums where the report goes as far as the
 // history.
-func (h *history) addRegisters(r *Report, ids map[string]uint32, plan account.Plan) error {
+func (h *history) addRegisters(r *answer.Report, ids map[string]uint32, plan account.Plan) error {
 	if plan.To < plan.Accounted() {
 		return nil
 	}

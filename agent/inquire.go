@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"heatreeve/agent/answer"
 	"io"
 	"net/http"
 	"net/url"
@@ -15,7 +16,7 @@ const answerBytes = 64 << 20
 
 // Inquire answers q from a history: a data folder, or a copy of its file. Where an agent
 // runs on the folder, it is asked. What is wrong with q is a [*QueryError].
-func Inquire(ctx context.Context, data string, q Query) (r *Report, err error) {
+func Inquire(ctx context.Context, data string, q answer.Query) (r *answer.Report, err error) {
 	err = reach(data, func(a address) (err error) {
 		r, err = ask(ctx, a, q)
 		return err
@@ -30,8 +31,8 @@ func Inquire(ctx context.Context, data string, q Query) (r *Report, err error) {
 }
 
 // ask has the agent at a answer.
-func ask(ctx context.Context, a address, q Query) (*Report, error) {
-	return request[Report](ctx, a, reportPath, q.values(), reportTime, answerBytes)
+func ask(ctx context.Context, a address, q answer.Query) (*answer.Report, error) {
+	return request[answer.Report](ctx, a, reportPath, q.Values(), reportTime, answerBytes)
 }
 
 // request has the agent at a answer a path, which it does within the time, by at most so

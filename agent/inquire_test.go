@@ -14,6 +14,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/design"
 	"heatreeve/store"
 )
@@ -31,7 +32,7 @@ func TestInquireOfAFile(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
-	inquire := func(data string, q Query) (*Report, error) {
+	inquire := func(data string, q answer.Query) (*answer.Report, error) {
 		t.Helper()
 		if err := db.Close(); err != nil {
 			t.Fatal(err)
@@ -44,14 +45,14 @@ func TestInquireOfAFile(t *testing.T) {
 		t.Cleanup(func() { db.Close() })
 		return r, err
 	}
-	if _, err := inquire(dir, Query{From: "2026-10-24"}); err == nil || !strings.HasPrefix(err.Error(), "zone is missing") {
+	if _, err := inquire(dir, answer.Query{From: "2026-10-24"}); err == nil || !strings.HasPrefix(err.Error(), "zone is missing") {
 		t.Errorf("a history without a state: %v", err)
 	}
 	save("")
-	if _, err := inquire(dir, Query{From: "2026-10-24"}); err == nil || !strings.HasPrefix(err.Error(), "zone is missing") {
+	if _, err := inquire(dir, answer.Query{From: "2026-10-24"}); err == nil || !strings.HasPrefix(err.Error(), "zone is missing") {
 		t.Errorf("a history that knows no zone: %v", err)
 	}
-	if r, err := inquire(dir, Query{From: "2026-10-24", Zone: "Asia/Kolkata"}); err != nil || r.Zone != "Asia/Kolkata" {
+	if r, err := inquire(dir, answer.Query{From: "2026-10-24", Zone: "Asia/Kolkata"}); err != nil || r.Zone != "Asia/Kolkata" {
 		t.Errorf("with a zone: %+v, %v", r, err)
 	}
 	save("Europe/Dublin")
@@ -67,12 +68,12 @@ func TestInquireOfAFile(t *testing.T) {
 		t.Fatal(err)
 	}
 	for _, data := range []string{dir, filepath.Join(dir, HistoryFile), copied} {
-		r, err := inquire(data, Query{From: "2026-10-24"})
+		r, err := inquire(data, answer.Query{From: "2026-10-24"})
 		if err != nil || r.Site != "Mill" || r.Zone != "Europe/Dublin" || !near12(r.Loads[0].Total.Given, rampHeat(0, 1440)) {
 			t.Errorf("%s: %+v, %v", data, r, err)
 		}
 	}
-	_, err = Inquire(t.Context(), dir, Query{From: "2026-10-24"}) // db is open
+	_, err = Inquire(t.Context(), dir, answer.Query{From: "2026-10-24"}) // db is open
 	if !errors.Is(err, store.ErrLocked) && (err == nil || !strings.Contains(err.Error(), "no answer at 127.0.0.1:1")) {
 		t.Errorf("a history that is open elsewhere: %v", err)
 	}
@@ -81,7 +82,7 @@ func TestInquireOfAFile(t *testing.T) {
 func TestInquireWithoutHistory(t *testing.T) {
 	dir := t.TempDir()
 	for data, want := range map[string]string{dir: "no history in", filepath.Join(dir, "nowhere"): "nowhere"} {
-		if _, err := Inquire(t.Context(), data, Query{From: "2026-10-24"}); err == nil || !strings.Contains(err.Error(), want) {
+		if _, err := Inquire(t.Context(), data, answer.Query{From: "2026-10-24"}); err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%s: %v, want ...%q...", data, err, want)
 		}
 	}
@@ -95,7 +96,7 @@ func TestInquireWithoutHistory(t *testing.T) {
 	if err := db.Close(); err != nil {
 		t.Fatal(err)
 	}
-	if _, err := Inquire(t.Context(), dir, Query{From: "2026-10-24"}); err == nil || !strings.Contains(err.Error(), "no account yet") {
+	if _, err := Inquire(t.Context(), dir, answer.Query{From: "2026-10-24"}); err == nil || !strings.Contains(err.Error(), "no account yet") {
 		t.Errorf("an empty history: %v", err)
 	}
 }
@@ -112,7 +113,7 @@ func TestAskTheAgent(t *testing.T) {
 	if err := leaveAddress(dir, a); err != nil {
 		t.Fatal(err)
 	}
-	q := Query{From: "2026-10-24", By: "hour", Demand: 30 * time.Minute}
+	q := answer.Query{From: "2026-10-24", By: "hour", Demand: 30 * time.Minute}
 	got, err := Inquire(t.Context(), dir, q)
 	if err != nil {
 		t.Fatal(err)
@@ -124,11 +125,11 @@ func TestAskTheAgent(t *testing.T) {
 	if g, w := text(t, got), text(t, want); g != w {
 		t.Errorf("asked:\n%s\nmade:\n%s", g, w)
 	}
-	var wrong *QueryError
-	if _, err := Inquire(t.Context(), dir, Query{From: "never"}); !errors.As(err, &wrong) || !strings.HasPrefix(wrong.Text, `from "never" is no date`) {
+	var wrong *answer.QueryError
+	if _, err := Inquire(t.Context(), dir, answer.Query{From: "never"}); !errors.As(err, &wrong) || !strings.HasPrefix(wrong.Text, `from "never" is no date`) {
 		t.Errorf("a wrong query: %v", err)
 	}
-	if _, err := Inquire(t.Context(), dir, Query{From: "2036-10-24"}); err == nil || errors.As(err, &wrong) || !strings.HasPrefix(err.Error(), "the history holds no record") {
+	if _, err := Inquire(t.Context(), dir, answer.Query{From: "2036-10-24"}); err == nil || errors.As(err, &wrong) || !strings.HasPrefix(err.Error(), "the history holds no record") {
 		t.Errorf("nothing to report: %v", err)
 	}
 	if _, err := ask(t.Context(), address{a.hostPort, "other", ""}, q); !errors.Is(err, errUnreachable) {
@@ -140,13 +141,13 @@ func TestAskTheAgent(t *testing.T) {
 		t.Errorf("another program: %v", err)
 	}
 	for body, want := range map[string]string{"{": "its answer of 1 bytes", "": "its answer of 0 bytes"} {
-		if _, err := understand[Report](a, http.StatusOK, []byte(body)); err == nil || !strings.Contains(err.Error(), want) {
+		if _, err := understand[answer.Report](a, http.StatusOK, []byte(body)); err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("answer %q: %v", body, err)
 		}
 	}
 }
 
-func text(t *testing.T, r *Report) string {
+func text(t *testing.T, r *answer.Report) string {
 	t.Helper()
 	b, err := json.Marshal(r)
 	if err != nil {
@@ -234,7 +235,7 @@ func TestSilenceAtTheAddress(t *testing.T) {
 	}
 	defer l.Close()
 	begun := time.Now()
-	_, err = ask(t.Context(), address{l.Addr().String(), "R", ""}, Query{From: "2026-10-24"})
+	_, err = ask(t.Context(), address{l.Addr().String(), "R", ""}, answer.Query{From: "2026-10-24"})
 	if took := time.Since(begun); !errors.Is(err, errUnreachable) || took < headerTime || took > reportTime/2 {
 		t.Errorf("silence for %v: %v", took, err)
 	}
@@ -249,7 +250,7 @@ func TestReportThatTakesLonger(t *testing.T) {
 	time.AfterFunc(headerTime+time.Second, func() { <-s.turn })
 	server := httptest.NewServer(s)
 	defer server.Close()
-	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Query{From: "2026-10-23"})
+	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, answer.Query{From: "2026-10-23"})
 	if err != nil || len(r.Loads) != 1 {
 		t.Errorf("%+v, %v", r, err)
 	}

@@ -12,6 +12,7 @@ import (
 	"strings"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/design/expect"
 	"heatreeve/agent/learning"
 	"heatreeve/agent/site"
@@ -76,21 +77,21 @@ var habits = map[string]expect.Habit{"": expect.AnyHabit, "none": expect.NoHabit
 // check finds the load and the tags in the site.
 func (l *Lesson) check(s *site.Site) (load int, tags []int, err error) {
 	if load, err = loadIn(s, l.Load); err != nil {
-		return 0, nil, queryErrorf("load %q is not in the site file", l.Load)
+		return 0, nil, answer.Wrongf("load %q is not in the site file", l.Load)
 	}
 	if l.By < time.Minute || l.By > time.Hour || time.Hour%l.By != 0 || l.By%time.Minute != 0 {
-		return 0, nil, queryErrorf("by %v: allowed are whole minutes that divide an hour, such as 10m and 1h", l.By)
+		return 0, nil, answer.Wrongf("by %v: allowed are whole minutes that divide an hour, such as 10m and 1h", l.By)
 	}
 	if _, ok := habits[l.Habit]; !ok {
-		return 0, nil, queryErrorf("habit %q: allowed are none, day, week", l.Habit)
+		return 0, nil, answer.Wrongf("habit %q: allowed are none, day, week", l.Habit)
 	}
 	if n := len(l.Against); n < 1 || n > 3 {
-		return 0, nil, queryErrorf("against: one to three tags are wanted, %d are given", n)
+		return 0, nil, answer.Wrongf("against: one to three tags are wanted, %d are given", n)
 	}
 	for _, name := range l.Against {
 		i := slices.IndexFunc(s.Tags, func(t site.Tag) bool { return t.Name == name })
 		if i < 0 || s.Tags[i].Counter != nil {
-			return 0, nil, queryErrorf("against: %q is no tag of the site file, or one that counts; what a duty is told by is a reading", name)
+			return 0, nil, answer.Wrongf("against: %q is no tag of the site file, or one that counts; what a duty is told by is a reading", name)
 		}
 		tags = append(tags, i)
 	}

@@ -10,6 +10,7 @@ import (
 	"testing"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/demo"
 	"heatreeve/agent/view"
 )
@@ -38,7 +39,7 @@ func TestMarksOnARunningAgent(t *testing.T) {
 	if err != nil || len(s.Shelves) != 1 || s.Shelves[0].By != "J. Marsh" {
 		t.Errorf("%+v, %v", s, err)
 	}
-	events, err := agent.Happened(t.Context(), data, agent.EventQuery{Kind: "shelved", Subject: "hot-water"})
+	events, err := agent.Happened(t.Context(), data, answer.EventQuery{Kind: "shelved", Subject: "hot-water"})
 	if err != nil || len(events.Events) != 1 {
 		t.Errorf("%+v, %v", events, err)
 	}

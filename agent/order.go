@@ -7,6 +7,7 @@ import (
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/design"
 	"heatreeve/agent/warn"
 	"heatreeve/store"
@@ -59,13 +60,13 @@ func orderOf(v url.Values) (o Order, err error) {
 		field := fields[name]
 		switch {
 		case len(texts) != 1:
-			return o, queryErrorf("%s is given %d times", name, len(texts))
+			return o, answer.Wrongf("%s is given %d times", name, len(texts))
 		case name == "for":
 			if o.For, err = time.ParseDuration(texts[0]); err != nil {
-				return o, queryErrorf("for %q is no length of time; write 8h", texts[0])
+				return o, answer.Wrongf("for %q is no length of time; write 8h", texts[0])
 			}
 		case field == nil:
-			return o, queryErrorf("%s is no parameter; known: do, subject, kind, by, reason, until, for", name)
+			return o, answer.Wrongf("%s is no parameter; known: do, subject, kind, by, reason, until, for", name)
 		default:
 			*field = texts[0]
 		}
@@ -91,13 +92,13 @@ func (o *Order) kinds(watched []warn.Watched) ([]design.Kind, error) {
 	case len(kinds) > 0:
 		return kinds, nil
 	case len(words) > 0:
-		return nil, queryErrorf("kind %q: on %q there are %s", o.Kind, o.Subject, listed(words))
+		return nil, answer.Wrongf("kind %q: on %q there are %s", o.Kind, o.Subject, listed(words))
 	case len(near.Names(o.Subject, subjects)) > 0:
-		return nil, queryErrorf("subject %q is not watched; did you mean %q?", o.Subject, near.Names(o.Subject, subjects)[0])
+		return nil, answer.Wrongf("subject %q is not watched; did you mean %q?", o.Subject, near.Names(o.Subject, subjects)[0])
 	case len(subjects) == 0:
-		return nil, queryErrorf("subject %q is not watched, nor is any other: no load has a design", o.Subject)
+		return nil, answer.Wrongf("subject %q is not watched, nor is any other: no load has a design", o.Subject)
 	}
-	return nil, queryErrorf("subject %q is not watched; there are: %s", o.Subject, listed(subjects))
+	return nil, answer.Wrongf("subject %q is not watched; there are: %s", o.Subject, listed(subjects))
 }
 
 // marking carries orders out on a roll, at an instant by a clock of a place.
@@ -120,7 +121,7 @@ func (m *marking) carryOut(o Order) ([]store.Event, error) {
 	case Unshelve:
 		ended, err := m.roll.Unshelve(o.Subject, design.Kind(o.Kind), mark)
 		if err != nil {
-			return nil, queryErrorf("%v", err)
+			return nil, answer.Wrongf("%v", err)
 		}
 		var events []store.Event
 		for _, s := range ended {
@@ -128,13 +129,13 @@ func (m *marking) carryOut(o Order) ([]store.Event, error) {
 		}
 		return events, nil
 	}
-	return nil, queryErrorf("do %q: allowed are %s, %s, %s", o.Do, Acknowledge, Shelve, Unshelve)
+	return nil, answer.Wrongf("do %q: allowed are %s, %s, %s", o.Do, Acknowledge, Shelve, Unshelve)
 }
 
 func (m *marking) acknowledge(o Order, mark warn.Mark) (events []store.Event, err error) {
 	marked, err := m.roll.Acknowledge(o.Subject, design.Kind(o.Kind), mark)
 	if err != nil {
-		return nil, queryErrorf("%v", err)
+		return nil, answer.Wrongf("%v", err)
 	}
 	for i := range marked {
 		events = append(events, m.event(eventAcknowledged, o.Subject, fmt.Sprintf("%s, by %s: %s", marked[i].Kind, o.By, o.Reason)))
@@ -154,7 +155,7 @@ func (m *marking) shelve(o Order, mark warn.Mark) (events []store.Event, err err
 	for _, k := range kinds {
 		s := warn.Shelf{Subject: o.Subject, Kind: k, Until: until, Mark: mark}
 		if err := m.roll.Shelve(s); err != nil {
-			return nil, queryErrorf("%v", err)
+			return nil, answer.Wrongf("%v", err)
 		}
 		events = append(events, m.event(eventShelved, o.Subject, s.Text(m.place)))
 	}
@@ -165,11 +166,11 @@ func (m *marking) shelve(o Order, mark warn.Mark) (events []store.Event, err err
 func (o *Order) until(now int64, place *time.Location) (int64, error) {
 	switch {
 	case o.Until != "" && o.For != 0:
-		return 0, queryErrorf("until and for are given; one of them tells the end")
+		return 0, answer.Wrongf("until and for are given; one of them tells the end")
 	case o.Until != "":
 		at, err := account.Moment(o.Until, place)
 		if err != nil {
-			return 0, queryErrorf("until %v", err)
+			return 0, answer.Wrongf("until %v", err)
 		}
 		return at, nil
 	case o.For != 0:

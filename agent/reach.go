@@ -18,6 +18,7 @@ import (
 	"slices"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/store"
 )
 
@@ -110,7 +111,7 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 func refusal(status int, body []byte) error {
 	text := string(bytes.TrimSpace(body))
 	if status == http.StatusBadRequest {
-		return &QueryError{text}
+		return &answer.QueryError{Text: text}
 	}
 	return errors.New(text)
 }

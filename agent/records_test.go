@@ -8,6 +8,7 @@ import (
 	"testing"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/store"
 )
@@ -80,10 +81,10 @@ func TestReportOfARamp(t *testing.T) {
 	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, n, ramp, "ramp")
 	for _, zone := range []string{"Europe/Dublin", "America/St_Johns", "Asia/Kolkata", "UTC"} {
 		for _, by := range []string{"hour", "day", "month"} {
-			for _, demand := range []time.Duration{NoDemand, 0, 15 * time.Minute, time.Hour} {
+			for _, demand := range []time.Duration{answer.NoDemand, 0, 15 * time.Minute, time.Hour} {
 				for _, span := range [][2]int{{0, n}, {60, 1500}, {80, 1999}, {3, 17}} {
 					h := historyIn(t, db, zone)
-					q := Query{By: by, Demand: demand,
+					q := answer.Query{By: by, Demand: demand,
 						From: week.Add(time.Duration(span[0]) * time.Minute).Format(time.RFC3339),
 						To:   week.Add(time.Duration(span[1]) * time.Minute).Format(time.RFC3339)}
 					checkRamp(t, &h, q, span[0], span[1])
@@ -93,7 +94,7 @@ func TestReportOfARamp(t *testing.T) {
 	}
 }
 
-func checkRamp(t *testing.T, h *history, q Query, from, to int) {
+func checkRamp(t *testing.T, h *history, q answer.Query, from, to int) {
 	t.Helper()
 	r, err := h.report(t.Context(), q)
 	if err != nil || len(r.Loads) != 1 || len(r.Notes) > 0 {
@@ -123,7 +124,7 @@ func checkRamp(t *testing.T, h *history, q Query, from, to int) {
 		t.Errorf("%+v: periods up to %v with %g J and %g s missing, total %+v", q, end, given, missing, l.Total)
 	}
 	length := r.Demand
-	if none := q.Demand == NoDemand || q.Demand == 0 && q.By == "hour"; none != (length == 0) || q.Demand == 0 && !none && length != 900 {
+	if none := q.Demand == answer.NoDemand || q.Demand == 0 && q.By == "hour"; none != (length == 0) || q.Demand == 0 && !none && length != 900 {
 		t.Errorf("%+v: demand windows of %g s", q, length)
 	}
 	if d := l.Total.Demand; (d != nil) != (length != 0) || d != nil && d.Peak != nil && (d.Peak.End.Sub(d.Peak.Start).Seconds() != length || !near12(d.Peak.Duty,
@@ -154,11 +155,11 @@ func TestDemandPeaksAgainstTheQuarters(t *testing.T) {
 	}
 	for _, zone := range []string{"Europe/Dublin", "Asia/Kolkata", "Asia/Kathmandu", "UTC"} {
 		h := historyIn(t, db, zone)
-		r, err := h.report(t.Context(), Query{From: "2026-10-24", Demand: 15 * time.Minute})
+		r, err := h.report(t.Context(), answer.Query{From: "2026-10-24", Demand: 15 * time.Minute})
 		if err != nil || len(r.Loads[0].Periods) < 4 {
 			t.Fatalf("%s: %v, %+v", zone, err, r)
 		}
-		brief, err := h.report(t.Context(), Query{From: "2026-10-24"})
+		brief, err := h.report(t.Context(), answer.Query{From: "2026-10-24"})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -200,11 +201,11 @@ func TestReportOfHoursWithoutMinutes(t *testing.T) {
 		t.Fatal("the minutes of the first day are still there")
 	}
 	h := historyIn(t, db, "Europe/Dublin")
-	checkRamp(t, &h, Query{From: "2026-10-24", To: "2026-10-26"}, 0, 49*60)
+	checkRamp(t, &h, answer.Query{From: "2026-10-24", To: "2026-10-26"}, 0, 49*60)
 	// Its last quarter is the highest of the day: known to the hour, and measured for what
 	// two seconds a minute, all of them taken from it, leave of it. An hour keeps its
 	// demand to a part in ten million.
-	r, err := h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25"})
+	r, err := h.report(t.Context(), answer.Query{From: "2026-10-24", To: "2026-10-25"})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -212,7 +213,7 @@ func TestReportOfHoursWithoutMinutes(t *testing.T) {
 		!k.Start.Equal(week.Add(23*time.Hour)) || !k.End.Equal(week.Add(24*time.Hour)) {
 		t.Errorf("peak %+v, notes %q", k, r.Notes)
 	}
-	r, err = h.report(t.Context(), Query{From: "2026-10-24", To: "2026-10-25", Demand: 10 * time.Minute})
+	r, err = h.report(t.Context(), answer.Query{From: "2026-10-24", To: "2026-10-25", Demand: 10 * time.Minute})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -241,7 +242,7 @@ func TestReportOfHoursThatAreCut(t *testing.T) {
 		{"month", 0, n, ""},
 		{"month", 90, 1530, "ramp: of 2 hours by UTC"}, // from the middle of an hour to that of one
 	} {
-		q := Query{By: tt.by, Demand: NoDemand, From: week.Add(time.Duration(tt.from) * time.Minute).Format(time.RFC3339), To: week.Add(time.Duration(tt.to) * time.Minute).Format(time.RFC3339)}
+		q := answer.Query{By: tt.by, Demand: answer.NoDemand, From: week.Add(time.Duration(tt.from) * time.Minute).Format(time.RFC3339), To: week.Add(time.Duration(tt.to) * time.Minute).Format(time.RFC3339)}
 		r, err := h.report(t.Context(), q)
 		if err != nil {
 			t.Fatal(err)
@@ -265,7 +266,7 @@ func TestReportOfHoursThatAreCut(t *testing.T) {
 			t.Errorf("%+v: notes %q", q, r.Notes)
 		}
 	}
-	r, err := h.report(t.Context(), Query{From: "2026-10-24T04:30", To: "2026-10-25T00:30", Demand: 30 * time.Minute})
+	r, err := h.report(t.Context(), answer.Query{From: "2026-10-24T04:30", To: "2026-10-25T00:30", Demand: 30 * time.Minute})
 	if err != nil || r.Loads[0].Total.Demand.Peak != nil {
 		t.Errorf("demand of hours that are cut: %+v, %v", r.Loads[0].Total.Demand, err)
 	}
@@ -280,27 +281,27 @@ func TestReportOfLoadsThatComeAndGo(t *testing.T) {
 		return m, load == "old" && k < 600 || load == "new" && k >= 1690 || load == "blind" && k < 30
 	}, "old", "new", "blind")
 	h := historyIn(t, db, "Europe/Dublin", "new", "blind")
-	names := func(r *Report) (all []string) {
+	names := func(r *answer.Report) (all []string) {
 		for _, l := range r.Loads {
 			all = append(all, l.Load)
 		}
 		return all
 	}
 	for _, tt := range []struct {
-		q    Query
+		q    answer.Query
 		want []string
 	}{
-		{Query{From: "2026-10-24"}, []string{"old", "new", "blind"}},
-		{Query{From: "2026-10-25"}, []string{"new", "blind"}},
-		{Query{From: "2026-10-24", To: "2026-10-25"}, []string{"old", "blind"}},
-		{Query{From: "2026-10-25", Loads: []string{"old"}}, []string{"old"}},
+		{answer.Query{From: "2026-10-24"}, []string{"old", "new", "blind"}},
+		{answer.Query{From: "2026-10-25"}, []string{"new", "blind"}},
+		{answer.Query{From: "2026-10-24", To: "2026-10-25"}, []string{"old", "blind"}},
+		{answer.Query{From: "2026-10-25", Loads: []string{"old"}}, []string{"old"}},
 	} {
 		r, err := h.report(t.Context(), tt.q)
 		if err != nil || !slices.Equal(names(r), tt.want) {
 			t.Errorf("%+v: %v, %v; want %v", tt.q, names(r), err, tt.want)
 		}
 	}
-	r, err := h.report(t.Context(), Query{From: "2026-10", By: "hour", Loads: []string{"new"}})
+	r, err := h.report(t.Context(), answer.Query{From: "2026-10", By: "hour", Loads: []string{"new"}})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -324,11 +325,12 @@ func TestRegistersBesideTheSum(t *testing.T) {
 		t.Fatal(err)
 	}
 	h := historyIn(t, db, "UTC")
+	all := &answer.Register{Given: 5e9, Taken: 7, BridgedGiven: 3, BridgedTaken: 2, Measured: 11, Bridged: 17, Missing: 13, Uncertain: 5}
 	for _, tt := range []struct {
 		to   string
-		want *Register
-	}{{"", &Register{5e9, 7, 3, 2, 11, 17, 13, 5}}, {"2027-01-01", &Register{5e9, 7, 3, 2, 11, 17, 13, 5}}, {"2026-10-24T05:00", nil}} {
-		r, err := h.report(t.Context(), Query{From: "2026-10-24", To: tt.to})
+		want *answer.Register
+	}{{"", all}, {"2027-01-01", all}, {"2026-10-24T05:00", nil}} {
+		r, err := h.report(t.Context(), answer.Query{From: "2026-10-24", To: tt.to})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -351,7 +353,7 @@ func TestReportOfAllThatAMinuteTells(t *testing.T) {
 		return m, true
 	}, "all")
 	h := historyIn(t, db, "Europe/Dublin")
-	for _, q := range []Query{{From: "2026-10-24", To: "2026-10-25"}, {From: "2026-10-24", To: "2026-10-25", By: "hour"}, {From: "2026-10-24", To: "2026-10-25", Demand: 5 * time.Minute}} {
+	for _, q := range []answer.Query{{From: "2026-10-24", To: "2026-10-25"}, {From: "2026-10-24", To: "2026-10-25", By: "hour"}, {From: "2026-10-24", To: "2026-10-25", Demand: 5 * time.Minute}} {
 		r, err := h.report(t.Context(), q)
 		if err != nil {
 			t.Fatal(err)

@@ -4,6 +4,7 @@ import (
 	"context"
 	"crypto/rand"
 	"encoding/json"
+	"heatreeve/agent/answer"
 	"net/http"
 	"time"
 )
@@ -40,7 +41,7 @@ func newReports(h history) *reports {
 
 func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	tellRun(w, r, s.run)
-	q, err := queryOf(r.URL.Query())
+	q, err := answer.QueryOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
 		return

@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"heatreeve/agent/answer"
 	"io"
 	"math"
 	"net"
@@ -76,18 +77,18 @@ func TestReportBeforeTimeHasBegun(t *testing.T) {
 
 // Queries survive the way to the agent.
 func TestQueryRoundTrip(t *testing.T) {
-	for _, demand := range []time.Duration{0, NoDemand, 20 * time.Minute} {
-		checkRoundTrip(t, Query{From: "2026-10-24", To: "2026-10-25T06:00+01:00", By: "hour", Loads: []string{"a b", "c&d=e"}, Demand: demand, Zone: "Asia/Kolkata"})
+	for _, demand := range []time.Duration{0, answer.NoDemand, 20 * time.Minute} {
+		checkRoundTrip(t, answer.Query{From: "2026-10-24", To: "2026-10-25T06:00+01:00", By: "hour", Loads: []string{"a b", "c&d=e"}, Demand: demand, Zone: "Asia/Kolkata"})
 	}
 }
 
-func checkRoundTrip(t *testing.T, q Query) {
+func checkRoundTrip(t *testing.T, q answer.Query) {
 	t.Helper()
-	v, err := url.ParseQuery(q.values().Encode())
+	v, err := url.ParseQuery(q.Values().Encode())
 	if err != nil {
 		t.Fatal(err)
 	}
-	got, err := queryOf(v)
+	got, err := answer.QueryOf(v)
 	if err != nil || got.From != q.From || got.To != q.To || got.By != q.By || got.Demand != q.Demand || got.Zone != q.Zone || !slices.Equal(got.Loads, q.Loads) {
 		t.Errorf("%+v, %v; want %+v", got, err, q)
 	}
@@ -98,14 +99,14 @@ func TestReportIsBounded(t *testing.T) {
 	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 60, ramp, "ramp")
 	h := historyIn(t, db, "UTC")
 	h.through = func() int64 { return week.Add(3 * 365 * 24 * time.Hour).UnixNano() }
-	_, err := h.report(t.Context(), Query{From: "2026-10-01", By: "hour"})
-	var wrong *QueryError
+	_, err := h.report(t.Context(), answer.Query{From: "2026-10-01", By: "hour"})
+	var wrong *answer.QueryError
 	if !errors.As(err, &wrong) || !strings.Contains(err.Error(), "by hour there are more than 12000 periods") {
 		t.Errorf("three years by the hour: %v", err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
 	cancel()
-	if _, err := h.report(ctx, Query{From: "2026-10-01"}); !errors.Is(err, context.Canceled) {
+	if _, err := h.report(ctx, answer.Query{From: "2026-10-01"}); !errors.Is(err, context.Canceled) {
 		t.Errorf("a report that nobody waits for: %v", err)
 	}
 	s := newReports(h)
@@ -159,7 +160,7 @@ func TestReportsThatNobodyTakes(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer resp.Body.Close()
-	var r Report
+	var r answer.Report
 	if err := json.NewDecoder(resp.Body).Decode(&r); err != nil || resp.StatusCode != http.StatusOK || len(r.Loads[0].Periods) < 4500 {
 		t.Errorf("one that takes its report: %d, %v", resp.StatusCode, err)
 	}
@@ -194,11 +195,11 @@ func BenchmarkReport(b *testing.B) {
 	h := history{db: db, zone: time.UTC, through: week.Add(year * time.Minute).UnixNano}
 	for _, q := range []struct {
 		name string
-		Query
+		answer.Query
 	}{
-		{"30d-by-hour", Query{From: "2027-06-01", To: "2027-07-01", By: "hour", Loads: []string{"a"}}},
-		{"30d-by-hour-demand", Query{From: "2027-06-01", To: "2027-07-01", By: "hour", Loads: []string{"a"}, Demand: 15 * time.Minute}},
-		{"year-by-month", Query{From: "2026-10-24", By: "month", Loads: []string{"a"}}},
+		{"30d-by-hour", answer.Query{From: "2027-06-01", To: "2027-07-01", By: "hour", Loads: []string{"a"}}},
+		{"30d-by-hour-demand", answer.Query{From: "2027-06-01", To: "2027-07-01", By: "hour", Loads: []string{"a"}, Demand: 15 * time.Minute}},
+		{"year-by-month", answer.Query{From: "2026-10-24", By: "month", Loads: []string{"a"}}},
 	} {
 		b.Run(q.name, func(b *testing.B) {
 			least := time.Duration(math.MaxInt64)

@@ -19,6 +19,7 @@ import (
 	"go.uber.org/goleak"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/demo"
 	"heatreeve/agent/view"
 )
@@ -128,7 +129,7 @@ func TestDemoPlantAndRestart(t *testing.T) {
 // demo begins again before its clock has come to the end.
 func checkEvents(t *testing.T, data, want string) {
 	t.Helper()
-	r, err := agent.Inquire(t.Context(), data, agent.Query{From: "2000-01", By: "month"})
+	r, err := agent.Inquire(t.Context(), data, answer.Query{From: "2000-01", By: "month"})
 	if err != nil {
 		t.Fatal(err)
 	}

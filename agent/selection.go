@@ -7,6 +7,7 @@ import (
 	"time"
 
 	"heatreeve/agent/account"
+	"heatreeve/agent/answer"
 )
 
 // Selection says what of a history is to be exported: the readings of a tag, or the minute
@@ -42,9 +43,9 @@ func selectionOf(v url.Values) (s Selection, err error) {
 	for name, texts := range v {
 		switch field := fields[name]; {
 		case field == nil:
-			return s, queryErrorf("%s is no parameter; known: tag, load, by, from, to, zone, format", name)
+			return s, answer.Wrongf("%s is no parameter; known: tag, load, by, from, to, zone, format", name)
 		case len(texts) != 1:
-			return s, queryErrorf("%s is given %d times", name, len(texts))
+			return s, answer.Wrongf("%s is given %d times", name, len(texts))
 		default:
 			*field = texts[0]
 		}
@@ -56,15 +57,15 @@ func selectionOf(v url.Values) (s Selection, err error) {
 func (s *Selection) check() error {
 	switch {
 	case s.Tag == "" && s.Load == "":
-		return queryErrorf("tag or load must be given")
+		return answer.Wrongf("tag or load must be given")
 	case s.Tag != "" && s.Load != "":
-		return queryErrorf("tag %q and load %q: an export is of one of them", s.Tag, s.Load)
+		return answer.Wrongf("tag %q and load %q: an export is of one of them", s.Tag, s.Load)
 	case s.Tag != "" && s.By != "":
-		return queryErrorf("by %q: readings are exported one by one; only the records of a load are by minute or by hour", s.By)
+		return answer.Wrongf("by %q: readings are exported one by one; only the records of a load are by minute or by hour", s.By)
 	case !slices.Contains([]string{"", ofMinute, ofHour}, s.By):
-		return queryErrorf("by %q: allowed are minute, hour", s.By)
+		return answer.Wrongf("by %q: allowed are minute, hour", s.By)
 	case !slices.Contains([]string{"", "csv", "json", parquetFormat}, s.Format):
-		return queryErrorf("format %q: allowed are csv, json, parquet", s.Format)
+		return answer.Wrongf("format %q: allowed are csv, json, parquet", s.Format)
 	}
 	return nil
 }
@@ -92,22 +93,22 @@ func (s *Selection) span(own *time.Location) (from, to int64, err error) {
 	if s.From == "" && s.To == "" && s.Zone == "" {
 		return from, to, nil
 	}
-	zone, err := Query{Zone: s.Zone}.place(own)
+	zone, err := placeOf(s.Zone, own)
 	if err != nil {
 		return from, to, err
 	}
 	if s.From != "" {
 		if from, err = account.Instant(s.From, zone); err != nil {
-			return from, to, queryErrorf("from %v", err)
+			return from, to, answer.Wrongf("from %v", err)
 		}
 	}
 	if s.To != "" {
 		if to, err = account.Instant(s.To, zone); err != nil {
-			return from, to, queryErrorf("to %v", err)
+			return from, to, answer.Wrongf("to %v", err)
 		}
 	}
 	if from >= to {
-		return from, to, queryErrorf("to %s is not after from %s; it is the end, and not in the export itself: for one day write the next", s.To, s.From)
+		return from, to, answer.Wrongf("to %s is not after from %s; it is the end, and not in the export itself: for one day write the next", s.To, s.From)
 	}
 	return from, to, nil
 }

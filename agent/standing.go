@@ -10,6 +10,7 @@ import (
 	"net/url"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/warn"
 )
 
@@ -20,29 +21,14 @@ const (
 	warningsTime = 10 * time.Second
 )
 
-// Standing is what a plant's agent warns of now.
-type Standing struct {
-	Site     string          `json:"site"`
-	At       time.Time       `json:"at"` // event time up to which all is accounted for
-	Warnings []warn.Document `json:"warnings"`
-	Shelves  []Shelved       `json:"shelves"`
-}
-
-// Shelved is a shelf, whether or not there is a warning on it.
-type Shelved struct {
-	Subject string `json:"subject"`
-	Kind    string `json:"kind"`
-	warn.MarkDocument
-}
-
-func standingOf(site string, at int64, b *warn.Board, place *time.Location) *Standing {
-	s := &Standing{Site: site, At: time.Unix(0, at).In(place), Warnings: []warn.Document{}, Shelves: []Shelved{}}
+func standingOf(site string, at int64, b *warn.Board, place *time.Location) *answer.Standing {
+	s := &answer.Standing{Site: site, At: time.Unix(0, at).In(place), Warnings: []warn.Document{}, Shelves: []answer.Shelved{}}
 	for _, l := range b.Listed() {
 		s.Warnings = append(s.Warnings, l.Document("", place))
 	}
 	for i := range b.Shelves {
 		f := &b.Shelves[i]
-		s.Shelves = append(s.Shelves, Shelved{f.Subject, string(f.Kind), *f.Document(place)})
+		s.Shelves = append(s.Shelves, answer.Shelved{Subject: f.Subject, Kind: string(f.Kind), MarkDocument: *f.Document(place)})
 	}
 	return s
 }
@@ -75,9 +61,9 @@ func writeJSON(w http.ResponseWriter, x any) {
 
 // Warnings tells what stands by a history: a data folder, or a copy of its file. Where an
 // agent runs on the folder, it is asked.
-func Warnings(ctx context.Context, data string) (s *Standing, err error) {
+func Warnings(ctx context.Context, data string) (s *answer.Standing, err error) {
 	err = reach(data, func(a address) (err error) {
-		s, err = request[Standing](ctx, a, warningsPath, url.Values{}, warningsTime, answerBytes)
+		s, err = request[answer.Standing](ctx, a, warningsPath, url.Values{}, warningsTime, answerBytes)
 		return err
 	}, func(h history) (err error) {
 		s, err = h.standing(time.Now())
@@ -90,7 +76,7 @@ func Warnings(ctx context.Context, data string) (s *Standing, err error) {
 }
 
 // standing reads from the history what stands, by a clock that tells which shelves have ended.
-func (h *history) standing(now time.Time) (*Standing, error) {
+func (h *history) standing(now time.Time) (*answer.Standing, error) {
 	state, ok, err := h.db.Checkpoint()
 	if err != nil {
 		return nil, err

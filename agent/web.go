@@ -15,6 +15,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/view"
@@ -30,8 +31,8 @@ come first.`
 func handler(metrics http.Handler, health *health, reports *reports, explains *explains, orders chan<- mark) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", metrics)
-	mux.HandleFunc("GET /healthz", answer(health.alive))
-	mux.HandleFunc("GET /readyz", answer(health.ready))
+	mux.HandleFunc("GET /healthz", faultless(health.alive))
+	mux.HandleFunc("GET /readyz", faultless(health.ready))
 	mux.Handle("GET "+reportPath, reports)
 	mux.Handle("GET "+explainPath, explains)
 	mux.Handle("GET "+exportPath, newExports(reports))
@@ -65,7 +66,7 @@ func front(w io.Writer, s *view.Snapshot, now time.Time) {
 			figure, verdict := s.Current(i, now.UnixNano())
 			duty := "-"
 			if figure.Measured() {
-				duty = fmt.Sprintf("%.1f ± %.1f kW", figure.Duty/1e3, CoverageFactor*figure.Uncertainty/1e3)
+				duty = fmt.Sprintf("%.1f ± %.1f kW", figure.Duty/1e3, answer.CoverageFactor*figure.Uncertainty/1e3)
 			}
 			line := fmt.Sprintf("%-32s %-10s %20s  %s", s.Loads[i].Name, verdict, duty, remark(&figure))
 			fmt.Fprintln(w, strings.TrimRight(line, " "))
@@ -114,8 +115,8 @@ func remark(f *loads.Figure) string {
 	return cmp.Or(f.Reason, f.Doubt(), f.Note)
 }
 
-// answer turns a list of what is wrong into 200 or 503, a line a fault.
-func answer(faults func() []string) http.HandlerFunc {
+// faultless turns a list of what is wrong into 200 or 503, a line a fault.
+func faultless(faults func() []string) http.HandlerFunc {
 	return func(w http.ResponseWriter, _ *http.Request) {
 		wrong := faults()
 		if len(wrong) == 0 {

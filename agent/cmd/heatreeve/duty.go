@@ -53,7 +53,7 @@ func runDuty(_ context.Context, c *call) error {
 		return err
 	}
 	if *asJSON {
-		return printJSON(c.stdout, h.answer())
+		return printJSON(c.stdout, h.result())
 	}
 	return h.tell(c.stdout)
 }

@@ -55,7 +55,7 @@ func TestDutyWorksTheExamples(t *testing.T) {
 		if s, ok := spellings[r.Text("flow_unit")]; ok {
 			flow = fmt.Sprintf("%g %s", s.factor*r.Number("flow"), s.unit)
 		}
-		v := askJSON[answer](t, "duty", fluid, "--flow", flow, "--from", T, "--to", r.Text("T_out_K")+" K", "--pressure", p, "--meter-at", r.Text("meter"))
+		v := askJSON[handResult](t, "duty", fluid, "--flow", flow, "--from", T, "--to", r.Text("T_out_K")+" K", "--pressure", p, "--meter-at", r.Text("meter"))
 		ran++
 		for _, f := range [...]struct {
 			name, column string

@@ -9,6 +9,7 @@ import (
 	"time"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 )
 
 const eventsHelp = `What happened beside the accounts: warnings with their greatest deviation and
@@ -23,7 +24,7 @@ report.
 `
 
 func runEvents(ctx context.Context, c *call) error {
-	var q agent.EventQuery
+	var q answer.EventQuery
 	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
 	c.flags.StringVar(&q.From, "from", "", "`DATE` from which on")
 	c.flags.StringVar(&q.To, "to", "", "`DATE` up to which, not in it any more")
@@ -35,9 +36,9 @@ func runEvents(ctx context.Context, c *call) error {
 	if err := c.parse(0, ""); err != nil {
 		return err
 	}
-	write := map[string]func(io.Writer, *agent.Events) error{
+	write := map[string]func(io.Writer, *answer.Events) error{
 		"table": eventsTable, "csv": eventsCSV,
-		"json": func(w io.Writer, e *agent.Events) error { return printJSON(w, e) },
+		"json": func(w io.Writer, e *answer.Events) error { return printJSON(w, e) },
 	}[*format]
 	switch {
 	case *data == "":
@@ -46,7 +47,7 @@ func runEvents(ctx context.Context, c *call) error {
 		return wrongf("heatreeve events: --format %q: allowed are table, csv, json", *format)
 	}
 	e, err := agent.Happened(ctx, *data, q)
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong):
 		return wrongf("heatreeve events: --%w", err)
@@ -62,7 +63,7 @@ func runEvents(ctx context.Context, c *call) error {
 	return nil
 }
 
-func eventsTable(w io.Writer, e *agent.Events) error {
+func eventsTable(w io.Writer, e *answer.Events) error {
 	if len(e.Events) == 0 {
 		_, err := fmt.Fprintln(w, "no events")
 		return err
@@ -75,7 +76,7 @@ func eventsTable(w io.Writer, e *agent.Events) error {
 	return nil
 }
 
-func eventsCSV(w io.Writer, e *agent.Events) error {
+func eventsCSV(w io.Writer, e *answer.Events) error {
 	out := csv.NewWriter(w)
 	out.UseCRLF = true
 	rows := [][]string{{"at", "until", "kind", "subject", "text"}}
@@ -85,7 +86,7 @@ func eventsCSV(w io.Writer, e *agent.Events) error {
 		if x.Until != nil {
 			until = x.Until.Format(time.RFC3339)
 		}
-		rows = append(rows, []string{x.At.Format(time.RFC3339), until, x.Kind, textField(x.Subject), textField(x.Text)})
+		rows = append(rows, []string{x.At.Format(time.RFC3339), until, x.Kind, answer.TextField(x.Subject), answer.TextField(x.Text)})
 	}
 	return out.WriteAll(rows)
 }

@@ -10,6 +10,7 @@ import (
 	"unicode/utf8"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/working"
 )
 
@@ -28,7 +29,7 @@ record of their minute is explained.
 `
 
 func runExplain(ctx context.Context, c *call) error {
-	var q agent.Explanation
+	var q answer.Explanation
 	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
 	c.flags.StringVar(&q.At, "at", "", "`TIME` of the figure; the newest without it")
 	c.flags.StringVar(&q.Zone, "zone", "", "IANA `NAME` of the time zone of TIME; without it, that of the plant")
@@ -41,7 +42,7 @@ func runExplain(ctx context.Context, c *call) error {
 	}
 	q.Load = c.operands[0]
 	w, err := agent.Explain(ctx, *data, q)
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong) && strings.HasPrefix(err.Error(), "load "):
 		return wrongf("heatreeve explain: %w", err)

@@ -8,6 +8,7 @@ import (
 	"time"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 )
 
 // exportHelp tells what an export holds.
@@ -59,7 +60,7 @@ func runExport(ctx context.Context, c *call) error {
 	if note != "" {
 		fmt.Fprintln(c.stderr, "note:", note)
 	}
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	if errors.As(err, &wrong) {
 		return wrongf("heatreeve export: --%w", err)
 	}

@@ -18,6 +18,7 @@ import (
 	"time"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/store"
 )
 
@@ -52,7 +53,7 @@ func column(t *testing.T, text, name string) (all []float64) {
 func TestExportAgainstReport(t *testing.T) {
 	data := keep(t)
 	_, text, _ := report(t, "--data", data, "--from", "2026-10-24", "--to", "2026-10-26", "--load", "hot-water", "--format", "json")
-	var r agent.Report
+	var r answer.Report
 	if err := json.Unmarshal([]byte(text), &r); err != nil {
 		t.Fatal(err)
 	}
@@ -203,7 +204,7 @@ func TestExportOfHoursAgainstReport(t *testing.T) {
 	data := keep(t)
 	span := []string{"--data", data, "--from", "2026-10-24T02:00Z", "--to", "2026-10-25T02:00Z", "--load", "hot-water"}
 	_, text, _ := report(t, append(span, "--by", "hour", "--format", "json")...)
-	var r agent.Report
+	var r answer.Report
 	if err := json.Unmarshal([]byte(text), &r); err != nil {
 		t.Fatal(err)
 	}

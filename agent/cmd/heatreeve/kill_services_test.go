@@ -8,6 +8,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"heatreeve/agent/answer"
 	"math"
 	"math/rand/v2"
 	"os/exec"
@@ -20,8 +21,6 @@ import (
 	"time"
 
 	mqtt "github.com/eclipse/paho.mqtt.golang"
-
-	"heatreeve/agent"
 )
 
 // mixed is a plant with a load of each kind: by flow rate with gaps that are bridged, by
@@ -286,9 +285,9 @@ func (a *agentUnderTest) accounts(t *testing.T, load string) (minutes, report st
 }
 
 // apart takes the events out of a report, which are those of the agent's own life.
-func apart(t *testing.T, text string, events *[]agent.Event) string {
+func apart(t *testing.T, text string, events *[]answer.Event) string {
 	t.Helper()
-	var r agent.Report
+	var r answer.Report
 	if err := json.Unmarshal([]byte(text), &r); err != nil {
 		t.Fatal(err)
 	}
@@ -308,7 +307,7 @@ func apart(t *testing.T, text string, events *[]agent.Event) string {
 // checkEvents looks at the events of an agent that was started, killed and stopped so often:
 // none is there twice, and there is none but starts and stops. Which of these there are hangs
 // on whether the agent had opened its history before it was ended.
-func checkEvents(t *testing.T, events []agent.Event, kills, stops int) {
+func checkEvents(t *testing.T, events []answer.Event, kills, stops int) {
 	t.Helper()
 	seen := map[string]int{}
 	counts := map[string]int{}

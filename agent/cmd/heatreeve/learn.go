@@ -8,6 +8,7 @@ import (
 	"time"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/site"
 )
 
@@ -51,7 +52,7 @@ func runLearn(ctx context.Context, c *call) error {
 		return err
 	}
 	x, err := agent.Learn(ctx, *data, s, l)
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong):
 		return wrongf("heatreeve learn: --%w", err)

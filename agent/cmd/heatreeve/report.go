@@ -7,6 +7,7 @@ import (
 	"io"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 )
 
 // reportHelp tells what a report needs and holds.
@@ -38,14 +39,14 @@ type details struct {
 	shares bool // what the uncertainty is made of
 }
 
-var formats = map[string]func(io.Writer, *agent.Report, details) error{
+var formats = map[string]func(io.Writer, *answer.Report, details) error{
 	"table": reportTable,
-	"csv":   reportCSV,
-	"json":  func(w io.Writer, r *agent.Report, _ details) error { return printJSON(w, r) },
+	"csv":   func(w io.Writer, r *answer.Report, d details) error { return r.CSV(w, d.shares) },
+	"json":  func(w io.Writer, r *answer.Report, _ details) error { return printJSON(w, r) },
 }
 
 func runReport(ctx context.Context, c *call) error {
-	var q agent.Query
+	var q answer.Query
 	var d details
 	var demand string
 	data := c.flags.String("data", "", "`DIR` that holds the history, or a copy of its file")
@@ -82,7 +83,7 @@ func runReport(ctx context.Context, c *call) error {
 		q.Zone = s.Zone.String()
 	}
 	r, err := agent.Inquire(ctx, *data, q)
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong):
 		return wrongf("heatreeve report: --%w", err)
@@ -97,7 +98,7 @@ func runReport(ctx context.Context, c *call) error {
 
 // tellReport puts on w what of the report its form has no room for. The error says that it is
 // not whole.
-func tellReport(w io.Writer, r *agent.Report, format string) error {
+func tellReport(w io.Writer, r *answer.Report, format string) error {
 	if format == "csv" {
 		for _, note := range r.Notes {
 			fmt.Fprintln(w, "note:", note)

@@ -14,6 +14,7 @@ import (
 	"unicode/utf8"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/store"
 )
 
@@ -54,32 +55,32 @@ func TestReportTable(t *testing.T) {
 }
 
 // rich is a report of one load with all that there may be to tell.
-func rich(by string, demand float64) *agent.Report {
+func rich(by string, demand float64) *answer.Report {
 	zone := time.FixedZone("", 3600)
 	at := func(hours int) time.Time { return time.Date(2026, 10, 24, hours, 0, 0, 0, zone) }
-	period := func(from, to int) agent.PeriodReport {
+	period := func(from, to int) answer.PeriodReport {
 		mean, u := 480e3, 4e3
-		p := agent.PeriodReport{
+		p := answer.PeriodReport{
 			Start: at(from), End: at(to), AccountedFrom: at(from), AccountedTo: at(to),
 			Given: 1.08e11, Taken: 3.6e9, BridgedGiven: 7.2e9, Uncertainty: 1.8e9, Systematic: 1.799e9, Random: 6e7, Expanded: 3.6e9,
-			Shares:   []agent.Share{{Part: "outlet pressure", Fraction: 0.62}, {Part: "heat capacity", Fraction: 0.3}, {Part: "matched pair", Fraction: 0.05}, {Part: "random", Fraction: 0.005}},
+			Shares:   []answer.Share{{Part: "outlet pressure", Fraction: 0.62}, {Part: "heat capacity", Fraction: 0.3}, {Part: "matched pair", Fraction: 0.05}, {Part: "random", Fraction: 0.005}},
 			Measured: 80000, Bridged: 6000, Missing: 400, Latent: 7300, Uncertain: 4321, Coverage: 0.92, Mean: &mean, MeanU: &u,
-			Lowest: &agent.Extreme{Duty: 1e3, Start: at(from), End: at(from + 1)}, Highest: &agent.Extreme{Duty: 6e5, Start: at(from), End: at(from + 1)},
-			Witness: &agent.Witness{Counted: 1.008e11, Served: 1.0206e11, Deviation: 0.0125},
+			Lowest: &answer.Extreme{Duty: 1e3, Start: at(from), End: at(from + 1)}, Highest: &answer.Extreme{Duty: 6e5, Start: at(from), End: at(from + 1)},
+			Witness: &answer.Witness{Counted: 1.008e11, Served: 1.0206e11, Deviation: 0.0125},
 		}
 		if demand != 0 {
-			p.Demand = &agent.Demand{Windows: 96, Full: 80, Peak: &agent.Peak{Duty: 5.8e5, Start: at(from).UTC(), End: at(from + 1), Coverage: 0.987}}
+			p.Demand = &answer.Demand{Windows: 96, Full: 80, Peak: &answer.Peak{Duty: 5.8e5, Start: at(from).UTC(), End: at(from + 1), Coverage: 0.987}}
 		}
 		return p
 	}
-	l := agent.LoadReport{Load: "coil", Periods: []agent.PeriodReport{period(0, 24), period(24, 48)}, Total: period(0, 48), Register: &agent.Register{Given: 5e11, Bridged: 12000, BridgedGiven: 1.44e10}}
+	l := answer.LoadReport{Load: "coil", Periods: []answer.PeriodReport{period(0, 24), period(24, 48)}, Total: period(0, 48), Register: &answer.Register{Given: 5e11, Bridged: 12000, BridgedGiven: 1.44e10}}
 	start, end := at(5), at(7)
-	events := []agent.Event{
+	events := []answer.Event{
 		{At: start, Until: &start, Kind: "started", Text: "heatreeve 1.0"},
 		{At: start, Until: &end, Kind: "disk", Text: "the disk took nothing: " + strings.Repeat("no room ", 20)},
 		{At: end, Kind: "silent", Subject: "TT-1", Text: "no reading"},
 	}
-	return &agent.Report{Zone: "Etc/GMT-1", By: by, From: at(0), To: at(48), Accounted: at(48), Demand: demand, Factor: 2, Loads: []agent.LoadReport{l}, Events: events}
+	return &answer.Report{Zone: "Etc/GMT-1", By: by, From: at(0), To: at(48), Accounted: at(48), Demand: demand, Factor: 2, Loads: []answer.LoadReport{l}, Events: events}
 }
 
 // What is bridged or latent, a witness and the shares have their place, within 100 columns.
@@ -117,7 +118,7 @@ func TestReportTableOfAllThereIs(t *testing.T) {
 // The csv tells the same, with a column a share where they are asked for.
 func TestReportCSVOfAllThereIs(t *testing.T) {
 	var b strings.Builder
-	if err := reportCSV(&b, rich("day", 900), details{shares: true}); err != nil {
+	if err := rich("day", 900).CSV(&b, true); err != nil {
 		t.Fatal(err)
 	}
 	records, err := csv.NewReader(strings.NewReader(b.String())).ReadAll()
@@ -150,7 +151,7 @@ func TestReportCSVAgainstJSON(t *testing.T) {
 		t.Fatal(err)
 	}
 	_, asJSON, _ := report(t, append(args, "json")...)
-	var r agent.Report
+	var r answer.Report
 	if err := json.Unmarshal([]byte(asJSON), &r); err != nil {
 		t.Fatal(err)
 	}
@@ -252,7 +253,7 @@ func TestReportTellsItsNotes(t *testing.T) {
 func TestReportCSVHasNoFormulas(t *testing.T) {
 	for name, want := range map[string]string{"hot-water": "hot-water", "=1+1": "'=1+1", "+a": "'+a", "-a": "'-a", "@a": "'@a", "\ta": "'\ta", "＝a": "'＝a", "a=1,b": "a=1,b"} {
 		var b strings.Builder
-		if err := reportCSV(&b, &agent.Report{Loads: []agent.LoadReport{{Load: name, Periods: make([]agent.PeriodReport, 1)}}}, details{}); err != nil {
+		if err := (&answer.Report{Loads: []answer.LoadReport{{Load: name, Periods: make([]answer.PeriodReport, 1)}}}).CSV(&b, false); err != nil {
 			t.Fatal(err)
 		}
 		records, err := csv.NewReader(strings.NewReader(b.String())).ReadAll()
@@ -323,7 +324,7 @@ func TestReadmeNamesTheReportKeys(t *testing.T) {
 	}
 	have := map[string]bool{"notes": true, "records_not_used": true} // of a damaged history
 	gather(have, any)
-	for _, part := range []interface{}{agent.Report{Events: []agent.Event{{}}}, agent.PeriodReport{Witness: new(agent.Witness)}} {
+	for _, part := range []interface{}{answer.Report{Events: []answer.Event{{}}}, answer.PeriodReport{Witness: new(answer.Witness)}} {
 		told, err := json.Marshal(part)
 		if err != nil || json.Unmarshal(told, &any) != nil {
 			t.Fatal(err)

@@ -5,14 +5,13 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"heatreeve/agent/answer"
 	"os"
 	"path/filepath"
 	"slices"
 	"sync"
 	"testing"
 	"time"
-
-	"heatreeve/agent"
 )
 
 // heard is what a command prints while it runs.
@@ -57,7 +56,7 @@ func TestReportWhileTheDemoRuns(t *testing.T) {
 		t.Error("the address of the agent is still there after its end")
 	}
 	status, text, said := report(t, args...)
-	var after agent.Report
+	var after answer.Report
 	if err := json.Unmarshal([]byte(text), &after); status != exitGood || err != nil {
 		t.Fatalf("after the end: status %d, %s, %v", status, said, err)
 	}
@@ -76,7 +75,7 @@ func TestReportWhileTheDemoRuns(t *testing.T) {
 }
 
 // awaitReport asks until the report has an hour of all four loads that is over.
-func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
+func awaitReport(t *testing.T, ended <-chan int, args []string) *answer.Report {
 	t.Helper()
 	ticker, deadline := time.NewTicker(100*time.Millisecond), time.After(60*time.Second)
 	defer ticker.Stop()
@@ -89,11 +88,11 @@ func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
 			t.Fatalf("no report within 60 s: %s%s", text, errs)
 		case <-ticker.C:
 			status, text, _ := report(t, args...)
-			var r agent.Report
+			var r answer.Report
 			if status != exitGood || json.Unmarshal([]byte(text), &r) != nil || len(r.Loads) != 4 {
 				continue
 			}
-			if !slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return l.Periods[0].AccountedTo.Before(l.Periods[0].End) }) {
+			if !slices.ContainsFunc(r.Loads, func(l answer.LoadReport) bool { return l.Periods[0].AccountedTo.Before(l.Periods[0].End) }) {
 				return &r
 			}
 		}
@@ -101,7 +100,7 @@ func awaitReport(t *testing.T, ended <-chan int, args []string) *agent.Report {
 }
 
 // sameWhereOver holds what a report says of hours that were over against a later one.
-func sameWhereOver(t *testing.T, before, after *agent.Report) {
+func sameWhereOver(t *testing.T, before, after *answer.Report) {
 	t.Helper()
 	compared := 0
 	for i, l := range before.Loads {
@@ -120,7 +119,7 @@ func sameWhereOver(t *testing.T, before, after *agent.Report) {
 	}
 }
 
-func flat(t *testing.T, p agent.PeriodReport) string {
+func flat(t *testing.T, p answer.PeriodReport) string {
 	t.Helper()
 	b, err := json.Marshal(p)
 	if err != nil {

@@ -2,13 +2,12 @@ package main
 
 import (
 	"fmt"
+	"heatreeve/agent/answer"
 	"io"
-
-	"heatreeve/agent"
 )
 
 // reportEvents lists what happened beside the accounts.
-func reportEvents(w io.Writer, all []agent.Event) {
+func reportEvents(w io.Writer, all []answer.Event) {
 	if len(all) == 0 {
 		return
 	}
@@ -18,7 +17,7 @@ func reportEvents(w io.Writer, all []agent.Event) {
 	}
 }
 
-func eventLine(e *agent.Event) string {
+func eventLine(e *answer.Event) string {
 	line := clockTime(e.At)
 	switch {
 	case e.Until == nil:

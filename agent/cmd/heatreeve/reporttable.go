@@ -2,6 +2,7 @@ package main
 
 import (
 	"fmt"
+	"heatreeve/agent/answer"
 	"io"
 	"iter"
 	"math"
@@ -10,8 +11,6 @@ import (
 	"text/tabwriter"
 	"time"
 	"unicode/utf8"
-
-	"heatreeve/agent"
 )
 
 const (
@@ -29,7 +28,7 @@ Missing time has no heat in it. Mean duty: over the covered time, positive in th
 )
 
 // reportTable writes a table for each load, and below them what the columns are.
-func reportTable(w io.Writer, r *agent.Report, d details) error {
+func reportTable(w io.Writer, r *answer.Report, d details) error {
 	if r.Site != "" {
 		fmt.Fprintf(w, "%s\n\n", r.Site)
 	}
@@ -60,7 +59,7 @@ func reportTable(w io.Writer, r *agent.Report, d details) error {
 }
 
 // legend tells what the columns are that the tables have.
-func legend(r *agent.Report, d details) string {
+func legend(r *answer.Report, d details) string {
 	text := reportLegend + highestLegend
 	if r.Demand != 0 {
 		text = reportLegend + fmt.Sprintf(peakLegend, r.Demand/60)
@@ -76,20 +75,20 @@ func legend(r *agent.Report, d details) string {
 	return text + reportSafety
 }
 
-func hasBridged(p *agent.PeriodReport) bool { return p.Bridged > 0 }
-func hasLatent(p *agent.PeriodReport) bool  { return p.Latent > 0 }
-func hasDoubt(p *agent.PeriodReport) bool   { return p.Uncertain > 0 }
-func hasWitness(p *agent.PeriodReport) bool { return p.Witness != nil }
+func hasBridged(p *answer.PeriodReport) bool { return p.Bridged > 0 }
+func hasLatent(p *answer.PeriodReport) bool  { return p.Latent > 0 }
+func hasDoubt(p *answer.PeriodReport) bool   { return p.Uncertain > 0 }
+func hasWitness(p *answer.PeriodReport) bool { return p.Witness != nil }
 
 // anyHas tells whether any load of the report has something.
-func anyHas(r *agent.Report, what func(*agent.PeriodReport) bool) bool {
-	return slices.ContainsFunc(r.Loads, func(l agent.LoadReport) bool { return what(&l.Total) })
+func anyHas(r *answer.Report, what func(*answer.PeriodReport) bool) bool {
+	return slices.ContainsFunc(r.Loads, func(l answer.LoadReport) bool { return what(&l.Total) })
 }
 
 func clockTime(t time.Time) string { return t.Format("2006-01-02 15:04 -07:00") }
 
 // remark tells of a load what its table cannot.
-func (s *sheet) remark(w io.Writer, l *agent.LoadReport) {
+func (s *sheet) remark(w io.Writer, l *answer.LoadReport) {
 	for i := range l.Periods {
 		if p := &l.Periods[i]; inPart(p) {
 			fmt.Fprintf(w, "* in part: %s to %s\n", clockTime(p.AccountedFrom), clockTime(p.AccountedTo))
@@ -107,7 +106,7 @@ func (s *sheet) remark(w io.Writer, l *agent.LoadReport) {
 	}
 }
 
-func inPart(p *agent.PeriodReport) bool {
+func inPart(p *answer.PeriodReport) bool {
 	return !p.AccountedFrom.Equal(p.Start) || !p.AccountedTo.Equal(p.End)
 }
 
@@ -121,7 +120,7 @@ type sheet struct {
 	heats, duties int     // decimals
 }
 
-func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
+func sheetOf(r *answer.Report, l *answer.LoadReport) *sheet {
 	s := &sheet{by: r.By, demand: r.Demand != 0, energy: 3.6e6, heat: "kWh"}
 	if max(l.Total.Given, l.Total.Taken) >= 36e9 {
 		s.energy, s.heat = 3.6e9, "MWh"
@@ -131,14 +130,14 @@ func sheetOf(r *agent.Report, l *agent.LoadReport) *sheet {
 	for _, p := range append(l.Periods, l.Total) {
 		s.width = max(s.width, len(bridgedName(&p)), len(latentName(&p)), len(doubtName(&p)))
 		if p.MeanU != nil && *p.MeanU > 0 {
-			heats, duties = append(heats, p.Expanded/s.energy), append(duties, agent.CoverageFactor**p.MeanU/1e3)
+			heats, duties = append(heats, p.Expanded/s.energy), append(duties, answer.CoverageFactor**p.MeanU/1e3)
 		}
 	}
 	s.heats, s.duties = places(heats, 3), places(duties, 2)
 	return s
 }
 
-func (s *sheet) table(l *agent.LoadReport) string {
+func (s *sheet) table(l *answer.LoadReport) string {
 	t := newColumns(tabwriter.AlignRight)
 	s.head(t)
 	for name, p := range s.rows(l) {
@@ -149,8 +148,8 @@ func (s *sheet) table(l *agent.LoadReport) string {
 }
 
 // rows are the periods with their names, and the total.
-func (s *sheet) rows(l *agent.LoadReport) iter.Seq2[string, *agent.PeriodReport] {
-	return func(yield func(string, *agent.PeriodReport) bool) {
+func (s *sheet) rows(l *answer.LoadReport) iter.Seq2[string, *answer.PeriodReport] {
+	return func(yield func(string, *answer.PeriodReport) bool) {
 		for i := range l.Periods {
 			if !yield(s.name(&l.Periods[i]), &l.Periods[i]) {
 				return
@@ -171,7 +170,7 @@ func flushLeft(t *columns) string {
 
 // apart adds a line for the bridged time, and one each for the latent and the uncertain,
 // where there is any.
-func (s *sheet) apart(t *columns, p *agent.PeriodReport) {
+func (s *sheet) apart(t *columns, p *answer.PeriodReport) {
 	empty := make([]string, s.columns()-3)
 	if hasBridged(p) {
 		t.line(append([]string{s.pad(bridgedName(p)), s.heatOf(p.BridgedGiven), s.heatOf(p.BridgedTaken)}, empty...)...)
@@ -184,11 +183,11 @@ func (s *sheet) apart(t *columns, p *agent.PeriodReport) {
 	}
 }
 
-func bridgedName(p *agent.PeriodReport) string { return "  bridged " + clockLength(p.Bridged) }
+func bridgedName(p *answer.PeriodReport) string { return "  bridged " + clockLength(p.Bridged) }
 
-func latentName(p *agent.PeriodReport) string { return "  latent " + clockLength(p.Latent) }
+func latentName(p *answer.PeriodReport) string { return "  latent " + clockLength(p.Latent) }
 
-func doubtName(p *agent.PeriodReport) string { return "  uncertain " + clockLength(p.Uncertain) }
+func doubtName(p *answer.PeriodReport) string { return "  uncertain " + clockLength(p.Uncertain) }
 
 // columns is how many the main table has.
 func (s *sheet) columns() int {
@@ -199,7 +198,7 @@ func (s *sheet) columns() int {
 }
 
 // witnesses is the table of the periods that have a witness.
-func (s *sheet) witnesses(l *agent.LoadReport) string {
+func (s *sheet) witnesses(l *answer.LoadReport) string {
 	t := newColumns(tabwriter.AlignRight)
 	t.line(s.pad("witness"), "counted", "served", "deviation")
 	t.line(s.pad(""), s.heat, s.heat, "")
@@ -215,7 +214,7 @@ func (s *sheet) witnesses(l *agent.LoadReport) string {
 const shareColumns = 42
 
 // shares is the table of what the uncertainty is made of.
-func (s *sheet) shares(l *agent.LoadReport) string {
+func (s *sheet) shares(l *answer.LoadReport) string {
 	t := newColumns(tabwriter.AlignRight)
 	text := func(x string) string { return fmt.Sprintf("%-*s", shareColumns, x) }
 	t.line(s.pad("uncertainty"), "±2u", "systematic", "random", text("shares"))
@@ -223,13 +222,13 @@ func (s *sheet) shares(l *agent.LoadReport) string {
 	fine := *s
 	fine.heats++
 	for name, p := range s.rows(l) {
-		t.line(s.pad(name), fine.heatOf(p.Expanded), fine.heatOf(agent.CoverageFactor*p.Systematic), fine.heatOf(agent.CoverageFactor*p.Random), text(largest(p.Shares)))
+		t.line(s.pad(name), fine.heatOf(p.Expanded), fine.heatOf(answer.CoverageFactor*p.Systematic), fine.heatOf(answer.CoverageFactor*p.Random), text(largest(p.Shares)))
 	}
 	return flushLeft(t)
 }
 
 // largest lists the shares of one percent and more, as many as there is room for.
-func largest(all []agent.Share) string {
+func largest(all []answer.Share) string {
 	list := ""
 	for _, s := range all {
 		next := fmt.Sprintf("%s %.0f %%", s.Part, 100*s.Fraction)
@@ -271,7 +270,7 @@ func (s *sheet) head(t *columns) {
 	t.line(second[:9]...)
 }
 
-func (s *sheet) name(p *agent.PeriodReport) string {
+func (s *sheet) name(p *answer.PeriodReport) string {
 	layout := map[string]string{"hour": "2006-01-02 15:04 -07:00", "day": "2006-01-02 -07:00", "month": "2006-01 -07:00"}[s.by]
 	if inPart(p) {
 		layout += "*"
@@ -279,7 +278,7 @@ func (s *sheet) name(p *agent.PeriodReport) string {
 	return p.Start.Format(layout)
 }
 
-func (s *sheet) line(t *columns, name string, p *agent.PeriodReport, long bool) {
+func (s *sheet) line(t *columns, name string, p *answer.PeriodReport, long bool) {
 	mean := "-"
 	if p.Mean != nil {
 		mean = decimals(*p.Mean/1e3, s.duties)
@@ -309,7 +308,7 @@ func (s *sheet) heatOf(joules float64) string {
 // moment tells when in a period something was: the time of day, with the date in long
 // ones, and the offset where it is not that of the period's beginning. Among hours it is
 // left out: the hour has it.
-func (s *sheet) moment(p *agent.PeriodReport, at time.Time, long bool) string {
+func (s *sheet) moment(p *answer.PeriodReport, at time.Time, long bool) string {
 	layout := "15:04"
 	if long {
 		layout = "01-02 15:04"

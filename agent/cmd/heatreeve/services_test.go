@@ -7,6 +7,7 @@ import (
 	"bytes"
 	"context"
 	"fmt"
+	"heatreeve/agent/answer"
 	"io"
 	"math"
 	"net"
@@ -19,8 +20,6 @@ import (
 	"sync"
 	"testing"
 	"time"
-
-	"heatreeve/agent"
 )
 
 // patience is how long a test waits for what ought to take a moment.
@@ -242,7 +241,7 @@ type agentUnderTest struct {
 	*process
 	site, data string
 	address    string
-	events     []agent.Event // of the last report
+	events     []answer.Event // of the last report
 }
 
 // site writes a site file for the broker; %PORT% stands for its port.

@@ -9,6 +9,7 @@ import (
 	"time"
 
 	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/warn"
 )
 
@@ -64,7 +65,7 @@ func runWarnings(ctx context.Context, c *call) error {
 	return err
 }
 
-func tellStanding(w io.Writer, s *agent.Standing) {
+func tellStanding(w io.Writer, s *answer.Standing) {
 	fmt.Fprintln(w, wrapped(fmt.Sprintf("%s, up to %s", s.Site, s.At.Format(toTheMinute)), ""))
 	if len(s.Warnings) == 0 {
 		fmt.Fprintln(w, "no warnings")
@@ -150,7 +151,7 @@ func runMark(ctx context.Context, c *call, o agent.Order) error {
 		o.Do = agent.Unshelve
 	}
 	d, err := agent.Put(ctx, *data, o)
-	var wrong *agent.QueryError
+	var wrong *answer.QueryError
 	switch {
 	case errors.As(err, &wrong):
 		return wrongf("heatreeve %s: %w", c.name, err)

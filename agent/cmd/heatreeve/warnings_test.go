@@ -6,7 +6,7 @@ import (
 	"testing"
 	"time"
 
-	"heatreeve/agent"
+	"heatreeve/agent/answer"
 	"heatreeve/agent/warn"
 )
 
@@ -18,7 +18,7 @@ func TestStandingWarningsAreSetApart(t *testing.T) {
 	d := warn.Document{Subject: "milk", Kind: "short", State: "unacknowledged", Greatest: &greatest,
 		Since: "2026-07-02T12:50:00+01:00", Begin: "2026-07-02T13:00:00+01:00"}
 	var out strings.Builder
-	tellStanding(&out, &agent.Standing{Site: "hall", At: time.Date(2026, 7, 2, 13, 1, 0, 0, dublin), Warnings: []warn.Document{d}})
+	tellStanding(&out, &answer.Standing{Site: "hall", At: time.Date(2026, 7, 2, 13, 1, 0, 0, dublin), Warnings: []warn.Document{d}})
 	want := `hall, up to 2026-07-02 13:01 +01:00
 
 milk: short, unacknowledged

@@ -2,8 +2,8 @@ package main
 
 import "math"
 
-// answer is the calculation as --json prints it.
-type answer struct {
+// handResult is the calculation as --json prints it.
+type handResult struct {
 	Fluid         string   `json:"fluid"`
 	Duty          float64  `json:"duty_W"`
 	MassFlow      float64  `json:"mass_flow_kg_per_s"`
@@ -24,10 +24,10 @@ type answer struct {
 	Notes         []string `json:"notes,omitempty"`
 }
 
-func (h *hand) answer() answer {
+func (h *hand) result() handResult {
 	cp, density, both := h.share()
 	x, r := h.state, h.Result
-	return answer{
+	return handResult{
 		Fluid: h.fluid.Name(), Duty: r.Duty, MassFlow: r.MassFlow, MeanCp: h.meanCp(),
 		InletT: x.Inlet, OutletT: x.Outlet, InletP: x.Pressure, OutletP: x.OutletPressure,
 		InletH: r.Inlet.Enthalpy, OutletH: r.Outlet.Enthalpy,

@@ -1,4 +1,4 @@
-package main
+package answer
 
 import (
 	"encoding/csv"
@@ -8,8 +8,6 @@ import (
 	"strconv"
 	"strings"
 	"time"
-
-	"heatreeve/agent"
 )
 
 var reportHeader = []string{
@@ -28,14 +26,14 @@ var reportHeader = []string{
 // shareColumn names the column of a share of the variance.
 func shareColumn(part string) string { return "share_" + strings.ReplaceAll(part, " ", "_") }
 
-// reportCSV writes a line a period and load (RFC 4180). What there is none of is an
-// empty field.
-func reportCSV(w io.Writer, r *agent.Report, d details) error {
+// CSV writes a line a period and load (RFC 4180), heat in kWh, duty in kW, with the shares of
+// the variance where they are asked for. What there is none of is an empty field.
+func (r *Report) CSV(w io.Writer, withShares bool) error {
 	c := csv.NewWriter(w)
 	c.UseCRLF = true
 	header := slices.Clone(reportHeader)
-	if d.shares {
-		for _, part := range agent.ShareNames() {
+	if withShares {
+		for _, part := range ShareNames() {
 			header = append(header, shareColumn(part))
 		}
 	}
@@ -46,7 +44,7 @@ func reportCSV(w io.Writer, r *agent.Report, d details) error {
 		for k := range r.Loads[i].Periods {
 			p := &r.Loads[i].Periods[k]
 			record := reportRecord(r.Loads[i].Load, p)
-			if d.shares {
+			if withShares {
 				record = append(record, shareFields(p.Shares)...)
 			}
 			if err := c.Write(record); err != nil {
@@ -61,22 +59,22 @@ func reportCSV(w io.Writer, r *agent.Report, d details) error {
 	return nil
 }
 
-func reportRecord(load string, p *agent.PeriodReport) []string {
+func reportRecord(load string, p *PeriodReport) []string {
 	fields := []string{
-		textField(load), instantField(p.Start), instantField(p.End), instantField(p.AccountedFrom), instantField(p.AccountedTo),
+		TextField(load), instantField(p.Start), instantField(p.End), instantField(p.AccountedFrom), instantField(p.AccountedTo),
 		energyField(p.Given), energyField(p.Taken), energyField(p.Expanded),
 		field(p.Measured), field(p.Bridged), field(p.Missing), field(p.Coverage),
 	}
 	if p.Mean == nil {
 		fields = append(fields, make([]string, 8)...)
 	} else {
-		fields = append(fields, field(*p.Mean/1e3), field(agent.CoverageFactor**p.MeanU/1e3),
+		fields = append(fields, field(*p.Mean/1e3), field(CoverageFactor**p.MeanU/1e3),
 			field(p.Lowest.Duty/1e3), instantField(p.Lowest.Start), instantField(p.Lowest.End),
 			field(p.Highest.Duty/1e3), instantField(p.Highest.Start), instantField(p.Highest.End))
 	}
 	fields = append(append(fields, demandFields(p.Demand)...),
 		energyField(p.BridgedGiven), energyField(p.BridgedTaken), field(p.Latent), field(p.Uncertain),
-		energyField(agent.CoverageFactor*p.Systematic), energyField(agent.CoverageFactor*p.Random))
+		energyField(CoverageFactor*p.Systematic), energyField(CoverageFactor*p.Random))
 	if p.Witness == nil {
 		return append(fields, "", "", "")
 	}
@@ -84,10 +82,10 @@ func reportRecord(load string, p *agent.PeriodReport) []string {
 }
 
 // shareFields has the fraction of each part that there may be.
-func shareFields(all []agent.Share) (fields []string) {
-	for _, part := range agent.ShareNames() {
+func shareFields(all []Share) (fields []string) {
+	for _, part := range ShareNames() {
 		fraction := 0.0
-		if i := slices.IndexFunc(all, func(s agent.Share) bool { return s.Part == part }); i >= 0 {
+		if i := slices.IndexFunc(all, func(s Share) bool { return s.Part == part }); i >= 0 {
 			fraction = all[i].Fraction
 		}
 		fields = append(fields, field(fraction))
@@ -95,7 +93,7 @@ func shareFields(all []agent.Share) (fields []string) {
 	return fields
 }
 
-func demandFields(d *agent.Demand) []string {
+func demandFields(d *Demand) []string {
 	if d == nil {
 		return make([]string, 6)
 	}
@@ -114,9 +112,9 @@ func energyField(joules float64) string { return field(joules / 3.6e6) }
 // field shows a number with all its digits, and never with an exponent.
 func field(x float64) string { return strconv.FormatFloat(x, 'f', -1, 64) }
 
-// textField shows a name so that no spreadsheet works it as a formula: quotes do not keep
+// TextField shows a name so that no spreadsheet works it as a formula: quotes do not keep
 // one from that, an apostrophe in front does (common practice, no source).
-func textField(name string) string {
+func TextField(name string) string {
 	if name != "" && strings.ContainsRune("=+-@\t\r\n＝＋－＠", []rune(name)[0]) {
 		return "'" + name
 	}
