@@ -36,6 +36,10 @@ var arrows = map[string][]string{
 		"agent/loads",
 	},
 	"agent/answer":   {"agent/account", "agent/loads", "agent/warn"},
+	"agent/shown":    {"thermo/unit"},
+	"agent/page": {
+		"agent/answer", "agent/shown", "agent/view", "agent/warn", "agent/working", "agent/loads", "agent/design", "agent/design/exchanger", "agent/site", "thermo", "thermo/unit", "ingest/quality",
+	},
 	"agent/learning": {"agent/design/expect", "agent/site", "thermo/unit"},
 	"agent/parquet":  {},
 	"agent/proving": {
