@@ -1,0 +1,122 @@
+package page
+
+import (
+	"io"
+	"net/http"
+	"net/http/httptest"
+	"strings"
+	"testing"
+)
+
+const long = 2048
+
+// answered asks for a body of n letters, with some header fields.
+func answered(t *testing.T, h http.Handler, method string, fields http.Header) *http.Response {
+	t.Helper()
+	r := httptest.NewRequest(method, "/", nil)
+	r.Header = fields
+	w := httptest.NewRecorder()
+	h.ServeHTTP(w, r)
+	return w.Result()
+}
+
+func letters(n int) http.Handler {
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		Answer(w, r, "application/json", []byte(strings.Repeat("a", n)))
+	})
+}
+
+// The validator answers 304 without a body, with the fields
+// that 200 would have had (RFC 9110, 15.4.5).
+func TestValidators(t *testing.T) {
+	own := answered(t, letters(long), "GET", nil).Header.Get("ETag")
+	if !strings.HasPrefix(own, `"`) {
+		t.Fatalf("validator %s", own)
+	}
+	if other := answered(t, letters(long+1), "GET", nil).Header.Get("ETag"); other == own {
+		t.Errorf("two bodies have the validator %s", own)
+	}
+	for _, tt := range []struct {
+		match []string
+		want  int
+	}{
+		{[]string{own}, 304},
+		{[]string{"W/" + own}, 304},
+		{[]string{`"x,y", ` + own}, 304},
+		{[]string{`"x"`, own}, 304},
+		{[]string{" * "}, 304},
+		{[]string{`"x"`}, 200},
+		{[]string{strings.Trim(own, `"`)}, 200},
+		{[]string{`"x` + own}, 200},
+		{[]string{`"x" ` + own}, 200},
+		{[]string{""}, 200},
+	} {
+		resp := answered(t, letters(long), "GET", http.Header{"If-None-Match": tt.match})
+		body, err := io.ReadAll(resp.Body)
+		if err != nil || resp.StatusCode != tt.want || (len(body) == 0) != (tt.want == 304) {
+			t.Errorf("If-None-Match %q: %d with %d bytes, %v; want %d", tt.match, resp.StatusCode, len(body), err, tt.want)
+		}
+		if h := resp.Header; h.Get("ETag") != own || h.Get("Cache-Control") != "no-cache" || tt.want == 304 && h.Get("Content-Type") != "" {
+			t.Errorf("If-None-Match %q: %v", tt.match, h)
+		}
+	}
+}
+
+// A real client, whose connection stays in use, is told the same; HEAD has no body.
+func TestOnTheWire(t *testing.T) {
+	server := httptest.NewServer(letters(long))
+	defer server.Close()
+	ask := func(method, match string) (*http.Response, int) {
+		req, err := http.NewRequestWithContext(t.Context(), method, server.URL, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if match != "" {
+			req.Header.Set("If-None-Match", match)
+		}
+		resp, err := server.Client().Do(req)
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer resp.Body.Close()
+		text, err := io.ReadAll(resp.Body)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return resp, len(text)
+	}
+	first, n := ask("GET", "")
+	if first.StatusCode != 200 || n != long {
+		t.Errorf("first: %d, %d bytes", first.StatusCode, n)
+	}
+	if again, n := ask("GET", first.Header.Get("ETag")); again.StatusCode != 304 || n != 0 {
+		t.Errorf("again: %d, %d bytes", again.StatusCode, n)
+	}
+	if head, n := ask("HEAD", ""); head.StatusCode != 200 || n != 0 || head.Header.Get("ETag") == "" {
+		t.Errorf("head: %d, %d bytes, %v", head.StatusCode, n, head.Header)
+	}
+}
+
+// What a handler writes goes out as one answer, and what is no answer as it is.
+func TestBounded(t *testing.T) {
+	h := Bounded(http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		w.Header().Set("Content-Type", "text/html; charset=utf-8")
+		if r.Method == "DELETE" {
+			w.WriteHeader(http.StatusMethodNotAllowed)
+		}
+		for range 4 {
+			io.WriteString(w, strings.Repeat("a", long/4))
+		}
+	}))
+	resp := answered(t, h, "GET", nil)
+	if resp.StatusCode != 200 || resp.Header.Get("ETag") == "" || resp.Header.Get("Content-Type") != "text/html; charset=utf-8" {
+		t.Errorf("%d %v", resp.StatusCode, resp.Header)
+	}
+	if again := answered(t, h, "GET", http.Header{"If-None-Match": {resp.Header.Get("ETag")}}); again.StatusCode != 304 {
+		t.Errorf("again: %d", again.StatusCode)
+	}
+	resp = answered(t, h, "DELETE", http.Header{"If-None-Match": {"*"}})
+	if body, err := io.ReadAll(resp.Body); err != nil || resp.StatusCode != 405 || len(body) != long || resp.Header.Get("ETag") != "" {
+		t.Errorf("refused: %d %v, %d bytes, %v", resp.StatusCode, resp.Header, len(body), err)
+	}
+}
