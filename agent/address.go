@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"crypto/rand"
 	"errors"
 	"fmt"
 	"io/fs"
@@ -12,7 +13,8 @@ import (
 	"syscall"
 )
 
-// addressFile, in the data folder, tells where the agent that runs on it answers.
+// addressFile, in the data folder, tells where the agent that runs on it answers its own
+// command line.
 const addressFile = "agent.address"
 
 // mostAddress bounds what is read of it, in bytes.
@@ -22,8 +24,11 @@ const mostAddress = 1 << 10
 // have come to listen there since.
 type address struct {
 	hostPort, run string
-	key           string // proves that who has it can read the folder; "" of an older agent
+	key           string // proves that who has it can read the folder
 }
+
+// newAddress is one for a run that begins.
+func newAddress(at net.Addr) address { return address{at.String(), rand.Text(), rand.Text()} }
 
 // leaveAddress writes the address for those who look for the agent, and which history it is
 // for: a copy of the folder has another one.
@@ -62,7 +67,8 @@ func forgetAddress(data string) error {
 }
 
 // findAddress reads the address that an agent has left. The error says why there is none, or
-// why it is not to be asked: it must be of this history, and on this machine.
+// why it is not to be asked: it must be of this history, and stay within this machine, for the
+// key goes there.
 func findAddress(data string) (address, error) {
 	path := filepath.Join(data, addressFile)
 	text, err := readSome(path)
@@ -73,8 +79,8 @@ func findAddress(data string) (address, error) {
 		return address{}, err
 	}
 	lines := strings.Split(text, "\n")
-	if len(lines) < 4 || len(lines) > 5 || lines[1] == "" {
-		return address{}, fmt.Errorf("%s is no address of an agent", path)
+	if len(lines) != 5 || lines[1] == "" || lines[3] == "" {
+		return address{}, fmt.Errorf("%s is no address of an agent, or of an older one that is to be started anew", path)
 	}
 	history, err := identity(data)
 	switch {
@@ -87,14 +93,10 @@ func findAddress(data string) (address, error) {
 	if err != nil {
 		return address{}, fmt.Errorf("%s: %w", path, err)
 	}
-	if err := here(at.Addr()); err != nil {
-		return address{}, fmt.Errorf("%s: %w", path, err)
+	if !at.Addr().IsLoopback() {
+		return address{}, fmt.Errorf("%s: %s is not within this machine", path, at.Addr())
 	}
-	key := ""
-	if len(lines) == 5 {
-		key = lines[3]
-	}
-	return address{at.String(), lines[1], key}, nil
+	return address{at.String(), lines[1], lines[3]}, nil
 }
 
 // readSome reads a regular file that is no longer than an address.
@@ -108,21 +110,4 @@ func readSome(path string) (string, error) {
 	}
 	text, err := os.ReadFile(path)
 	return string(text), err
-}
-
-// here is an error unless at is an address of this machine.
-func here(at netip.Addr) error {
-	if at.IsLoopback() || at.IsUnspecified() {
-		return nil
-	}
-	own, err := net.InterfaceAddrs()
-	if err != nil {
-		return err
-	}
-	for _, a := range own {
-		if p, err := netip.ParsePrefix(a.String()); err == nil && p.Addr().Unmap() == at.Unmap().WithZone("") {
-			return nil
-		}
-	}
-	return fmt.Errorf("%s is no address of this machine", at)
 }

@@ -109,24 +109,26 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err != nil {
 		return err
 	}
-	listener, err := net.Listen("tcp", a.o.Listen)
+	doors, err := openDoors(a.o.Listen)
 	if err != nil {
-		return fmt.Errorf("listen on %q: %w", a.o.Listen, err)
+		return err
 	}
+	defer doors.close()
 	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name }), units: maps.Clone(books.accounts.units)})
-	if err := leaveAddress(a.o.Data, address{listener.Addr().String(), reports.run, reports.key}); err != nil {
-		a.o.Log.Warn("reports will not find the agent while it runs", "error", err)
+	at := newAddress(doors.private.Addr())
+	if err := leaveAddress(a.o.Data, at); err != nil {
+		a.o.Log.Warn("the command line will not find the agent while it runs", "error", err)
 	}
 	defer func() { err = errors.Join(err, forgetAddress(a.o.Data)) }()
-	return a.work(ctx, books, listener, reports)
+	return a.work(ctx, books, doors, at, reports)
 }
 
-// work runs the three parts. The session outlives the beat, so that the last
+// work runs the parts. The session outlives the beat, so that the last
 // acknowledgements still go out.
-func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, reports *reports) error {
-	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", listener.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
+func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at address, reports *reports) error {
+	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", doors.public.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
 	if a.o.Ready != nil {
-		a.o.Ready(listener.Addr())
+		a.o.Ready(doors.public.Addr())
 	}
 	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
 	defer endSession()
@@ -140,9 +142,9 @@ func (a *Agent) work(ctx context.Context, books *ledger, listener net.Listener, 
 		defer endSession()
 		return a.beats(ctx, books)
 	})
-	g.Go(func() error {
-		return serve(ctx, listener, handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions), a.orders))
-	})
+	public := handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions))
+	g.Go(func() error { return serve(ctx, doors.public, public) })
+	g.Go(func() error { return serve(ctx, doors.private, private(at.run, at.key, privately(public, a.orders))) })
 	return g.Wait()
 }
 

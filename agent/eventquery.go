@@ -84,16 +84,14 @@ func toldEvent(e *store.Event, zone *time.Location) answer.Event {
 // happenings tells events while the agent runs, to one at a time.
 type happenings struct {
 	history history
-	run     string
 	turn    turn
 }
 
 func newEvents(r *reports) *happenings {
-	return &happenings{history: r.history, run: r.run, turn: make(turn, 1)}
+	return &happenings{history: r.history, turn: make(turn, 1)}
 }
 
 func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	tellRun(w, r, s.run)
 	q, err := answer.EventQueryOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)

@@ -34,17 +34,15 @@ type question struct {
 type explains struct {
 	history   history
 	site      *site.Site
-	run       string // names this run of the agent
 	questions chan<- question
 	turn      turn // holds one while an explanation is in the making
 }
 
 func newExplains(r *reports, s *site.Site, questions chan<- question) *explains {
-	return &explains{history: r.history, site: s, run: r.run, questions: questions, turn: make(turn, 1)}
+	return &explains{history: r.history, site: s, questions: questions, turn: make(turn, 1)}
 }
 
 func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	tellRun(w, r, s.run)
 	q, err := answer.ExplanationOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)

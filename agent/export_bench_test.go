@@ -4,11 +4,9 @@ import (
 	"context"
 	"fmt"
 	"io"
-	"net/http/httptest"
 	"path/filepath"
 	"runtime"
 	"slices"
-	"strings"
 	"testing"
 	"time"
 
@@ -165,13 +163,13 @@ func BenchmarkCommitBesideExport(b *testing.B) {
 func exportOverAndOver(b *testing.B, db *store.Store, n *int) (stop func()) {
 	b.Helper()
 	s := newExports(newReports(history{db: db, through: week.UnixNano}))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	ctx, cancel := context.WithCancel(b.Context())
 	ended := make(chan error, 1)
 	go func() {
 		for {
 			m := &meter{w: io.Discard, tell: func(Progress) {}}
-			if err := m.ask(ctx, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Selection{Tag: "T-7"}); err != nil {
+			if err := m.ask(ctx, at, Selection{Tag: "T-7"}); err != nil {
 				ended <- err
 				return
 			}

@@ -265,9 +265,9 @@ func TestExportRefusals(t *testing.T) {
 	dir := t.TempDir()
 	db, _ := noted(t, filepath.Join(dir, HistoryFile), 100)
 	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+	if err := leaveAddress(dir, at); err != nil {
 		t.Fatal(err)
 	}
 	for _, tt := range []struct {
@@ -401,8 +401,8 @@ func TestUnitThatHasChanged(t *testing.T) {
 			t.Fatal(err)
 		}
 		s := newExports(newReports(history{db: l.store, zone: time.UTC, through: l.through.Load, units: l.accounts.units}))
-		server := httptest.NewServer(s)
-		if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+		server, at := own(s)
+		if err := leaveAddress(dir, at); err != nil {
 			t.Fatal(err)
 		}
 		asked, askedNote := extract("FT")

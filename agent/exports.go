@@ -29,16 +29,14 @@ const (
 // it waits for who asked.
 type exports struct {
 	history history
-	run     string // names this run of the agent
-	turn    turn   // holds one while an export is under way
+	turn    turn // holds one while an export is under way
 }
 
 func newExports(r *reports) *exports {
-	return &exports{history: r.history, run: r.run, turn: make(turn, 1)}
+	return &exports{history: r.history, turn: make(turn, 1)}
 }
 
 func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	tellRun(w, r, s.run)
 	q, err := selectionOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)

@@ -37,9 +37,9 @@ func TestExtractFromAgentAndFile(t *testing.T) {
 		return b.String()
 	}
 	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+	if err := leaveAddress(dir, at); err != nil {
 		t.Fatal(err)
 	}
 	asked := map[string]string{"csv": extract("csv"), "json": extract("json")}
@@ -75,9 +75,9 @@ func TestExtractIsCancelled(t *testing.T) {
 	}
 
 	s := newExports(newReports(h))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+	if err := leaveAddress(dir, at); err != nil {
 		t.Fatal(err)
 	}
 	ctx, cancel = context.WithCancel(t.Context())
@@ -149,10 +149,10 @@ func TestExtractOfWrongAnswers(t *testing.T) {
 func TestExtractToAFullDisk(t *testing.T) {
 	db, _ := noted(t, filepath.Join(t.TempDir(), HistoryFile), 2000)
 	s := newExports(newReports(historyIn(t, db, "UTC")))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
 	m := &meter{w: fullDisk{}, tell: func(Progress) { t.Error("progress") }}
-	err := m.ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, Selection{Tag: "TT-1"})
+	err := m.ask(t.Context(), at, Selection{Tag: "TT-1"})
 	if !errors.Is(err, errFull) || strings.Contains(err.Error(), "breaks off") {
 		t.Error(err)
 	}

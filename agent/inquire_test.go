@@ -107,9 +107,8 @@ func TestAskTheAgent(t *testing.T) {
 	dir := t.TempDir()
 	db := keep(t, filepath.Join(dir, HistoryFile), store.Options{}, 1440, ramp, "ramp")
 	s := newReports(historyIn(t, db, "Europe/Dublin"))
-	server := httptest.NewServer(s)
+	server, a := own(s)
 	defer server.Close()
-	a := address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}
 	if err := leaveAddress(dir, a); err != nil {
 		t.Fatal(err)
 	}
@@ -132,12 +131,12 @@ func TestAskTheAgent(t *testing.T) {
 	if _, err := Inquire(t.Context(), dir, answer.Query{From: "2036-10-24"}); err == nil || errors.As(err, &wrong) || !strings.HasPrefix(err.Error(), "the history holds no record") {
 		t.Errorf("nothing to report: %v", err)
 	}
-	if _, err := ask(t.Context(), address{a.hostPort, "other", ""}, q); !errors.Is(err, errUnreachable) {
+	if _, err := ask(t.Context(), address{a.hostPort, "other", a.key}, q); !errors.Is(err, errUnreachable) {
 		t.Errorf("another run: %v", err)
 	}
 	other := httptest.NewServer(http.NotFoundHandler())
 	defer other.Close()
-	if _, err := ask(t.Context(), address{strings.TrimPrefix(other.URL, "http://"), s.run, ""}, q); !errors.Is(err, errUnreachable) {
+	if _, err := ask(t.Context(), address{strings.TrimPrefix(other.URL, "http://"), a.run, a.key}, q); !errors.Is(err, errUnreachable) {
 		t.Errorf("another program: %v", err)
 	}
 	for body, want := range map[string]string{"{": "its answer of 1 bytes", "": "its answer of 0 bytes"} {
@@ -163,7 +162,7 @@ func TestAddressOfTheAgent(t *testing.T) {
 	if err := forgetAddress(dir); err != nil {
 		t.Error(err)
 	}
-	want := address{"[::]:9617", "X", "K"}
+	want := address{"[::1]:9617", "X", "K"}
 	if err := leaveAddress(dir, want); err != nil {
 		t.Fatal(err)
 	}
@@ -175,7 +174,7 @@ func TestAddressOfTheAgent(t *testing.T) {
 		t.Fatal(err)
 	}
 	for from, to := range map[string]string{
-		"[::]:9617": "192.0.2.7:80", "::": "2001:db8::1", ":9617": "", "X\n": "\n", "device": "machine", // documentation addresses: RFC 5737, RFC 3849
+		"[::1]:9617": "192.0.2.7:80", "::1": "::", "::": "2001:db8::", ":9617": "", "X\n": "\n", "K\n": "\n", "\nK": "", "device": "machine", // documentation addresses: RFC 5737, RFC 3849
 	} {
 		if err := os.WriteFile(path, bytes.Replace(text, []byte(from), []byte(to), 1), 0o600); err != nil {
 			t.Fatal(err)
@@ -209,9 +208,9 @@ func TestCopyOfAFolderWithItsAddress(t *testing.T) {
 	db := keep(t, filepath.Join(dir, HistoryFile), store.Options{}, 1440, ramp, "ramp")
 	h := historyIn(t, db, "Europe/Dublin")
 	s := newReports(h)
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+	if err := leaveAddress(dir, at); err != nil {
 		t.Fatal(err)
 	}
 	if err := os.CopyFS(copied, os.DirFS(dir)); err != nil {
@@ -248,9 +247,9 @@ func TestReportThatTakesLonger(t *testing.T) {
 	s := newReports(historyIn(t, db, "UTC"))
 	s.turn <- struct{}{} // another report is in the making
 	time.AfterFunc(headerTime+time.Second, func() { <-s.turn })
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	r, err := ask(t.Context(), address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}, answer.Query{From: "2026-10-23"})
+	r, err := ask(t.Context(), at, answer.Query{From: "2026-10-23"})
 	if err != nil || len(r.Loads) != 1 {
 		t.Errorf("%+v, %v", r, err)
 	}

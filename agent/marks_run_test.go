@@ -1,7 +1,7 @@
 package agent_test
 
 import (
-	"bytes"
+	"fmt"
 	"io"
 	"net/http"
 	"os"
@@ -53,8 +53,8 @@ func TestMarksOnARunningAgent(t *testing.T) {
 	}
 }
 
-// refused tries to mark without the key: with none, with that of nobody, and with the run that
-// each answer tells.
+// refused tries to mark where everybody looks, with the key too, and where the command line
+// asks, without the run and the key.
 func refused(t *testing.T, r *running, data string) {
 	t.Helper()
 	client := &http.Client{Transport: &http.Transport{DisableKeepAlives: true}}
@@ -63,31 +63,43 @@ func refused(t *testing.T, r *running, data string) {
 		t.Fatal(err)
 	}
 	lines := strings.Split(string(text), "\n")
-	send := func(method, key string) (int, string) {
-		t.Helper()
-		req, err := http.NewRequestWithContext(t.Context(), method, "http://"+r.address+"/mark", strings.NewReader("do=unshelve&subject=hot-water&by=x&reason=y"))
+	own, run, key := lines[0], lines[1], lines[3]
+	for _, tt := range []struct {
+		method, at, path, run, key string
+		want                       int
+	}{
+		{http.MethodPost, own, "/mark", "", "", http.StatusForbidden},
+		{http.MethodPost, own, "/mark", run, "", http.StatusForbidden},
+		{http.MethodPost, own, "/mark", run, run, http.StatusForbidden},
+		{http.MethodPost, own, "/mark", key, key, http.StatusForbidden},
+		{http.MethodPost, own, "/mark", "", key, http.StatusForbidden},
+		{http.MethodGet, own, "/", "", "", http.StatusForbidden},
+		{http.MethodGet, own, "/metrics", run, "nobody", http.StatusForbidden},
+		{http.MethodGet, own, "/metrics", run, key, http.StatusOK},
+		{http.MethodGet, own, "/mark", run, key, http.StatusNotFound},
+		{http.MethodDelete, own, "/", run, key, http.StatusMethodNotAllowed},
+		{http.MethodPost, r.address, "/mark", run, key, http.StatusNotFound},
+		{http.MethodPost, r.address, "/", run, key, http.StatusMethodNotAllowed},
+	} {
+		req, err := http.NewRequestWithContext(t.Context(), tt.method, "http://"+tt.at+tt.path, strings.NewReader("do=unshelve&subject=hot-water&by=x&reason=y"))
 		if err != nil {
 			t.Fatal(err)
 		}
 		req.Header.Set("Content-Type", "application/x-www-form-urlencoded")
-		req.Header.Set("Heatreeve-Key", key)
+		req.Header.Set("Heatreeve-Run", tt.run)
+		req.Header.Set("Heatreeve-Key", tt.key)
 		resp, err := client.Do(req)
 		if err != nil {
 			t.Fatal(err)
 		}
-		defer resp.Body.Close()
 		body, err := io.ReadAll(resp.Body)
-		if err != nil || bytes.Contains(body, []byte(lines[3])) || strings.Contains(resp.Header.Get("Heatreeve-Run"), lines[3]) {
-			t.Errorf("%v; the answer tells the key", err)
+		resp.Body.Close()
+		if err != nil || resp.StatusCode != tt.want {
+			t.Errorf("%+v: %d %s, %v", tt, resp.StatusCode, body, err)
 		}
-		return resp.StatusCode, string(body)
-	}
-	for _, key := range []string{"", "nobody", lines[1]} {
-		if status, body := send(http.MethodPost, key); status != http.StatusForbidden {
-			t.Errorf("key %q: %d %s", key, status, body)
+		told := fmt.Sprint(resp.Header, string(body))
+		if strings.Contains(told, key) || tt.want == http.StatusForbidden && strings.Contains(told, run) {
+			t.Errorf("%+v: the answer tells the run or the key: %s", tt, told)
 		}
-	}
-	if status, body := send(http.MethodGet, lines[3]); status != http.StatusMethodNotAllowed {
-		t.Errorf("GET: %d %s", status, body)
 	}
 }

@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"errors"
 	"io"
-	"net/http/httptest"
 	"path/filepath"
 	"slices"
 	"strings"
@@ -50,9 +49,9 @@ func TestParquetOfReadings(t *testing.T) {
 	h := historyIn(t, db, "UTC")
 	h.units = map[string]string{"TT-1": "K"}
 	s := newExports(newReports(h))
-	server := httptest.NewServer(s)
+	server, at := own(s)
 	defer server.Close()
-	if err := leaveAddress(dir, address{strings.TrimPrefix(server.URL, "http://"), s.run, ""}); err != nil {
+	if err := leaveAddress(dir, at); err != nil {
 		t.Fatal(err)
 	}
 	var b bytes.Buffer

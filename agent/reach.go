@@ -85,8 +85,8 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 		return fmt.Errorf("%w at %q: %w", errUnreachable, a.hostPort, err)
 	}
 	req.Header.Set(runHeader, a.run)
+	req.Header.Set(keyHeader, a.key)
 	if form != nil {
-		req.Header.Set(keyHeader, a.key)
 		req.Header.Set("Content-Type", "application/x-www-form-urlencoded")
 	}
 	transport := &http.Transport{DisableKeepAlives: true, DisableCompression: true, MaxResponseHeaderBytes: headerBytes}

@@ -2,7 +2,6 @@ package agent
 
 import (
 	"context"
-	"crypto/rand"
 	"encoding/json"
 	"heatreeve/agent/answer"
 	"net/http"
@@ -11,9 +10,6 @@ import (
 
 const (
 	reportPath = "/report"
-	// runHeader names the run of the agent that answers. Who sends it along with what it
-	// asks is told at once, ahead of the answer, by a status 102 with that header.
-	runHeader = "Heatreeve-Run"
 	// reportTime bounds how long one report may take.
 	reportTime = 2 * time.Minute
 	// reportStall is how long who asked for a report may take nothing of it.
@@ -28,19 +24,16 @@ const (
 // it has been taken, so that there is never more than one in memory.
 type reports struct {
 	history history
-	run     string        // names this run of the agent
-	key     string        // is told to those who can read the data folder alone
 	turn    chan struct{} // holds one while a report is in the making or on its way
 	queue   chan struct{} // holds one a query
 	stall   time.Duration
 }
 
 func newReports(h history) *reports {
-	return &reports{history: h, run: rand.Text(), key: rand.Text(), turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
+	return &reports{history: h, turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
 }
 
 func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	tellRun(w, r, s.run)
 	q, err := answer.QueryOf(r.URL.Query())
 	if err != nil {
 		refuse(w, err)
@@ -75,12 +68,4 @@ func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	e.SetEscapeHTML(false)
 	_ = e.Encode(report) // who asked has gone
 	_ = control.Flush()  // what is kept back is to be taken within the turn too
-}
-
-// tellRun names the run in the answer, and ahead of it to those who look for that run.
-func tellRun(w http.ResponseWriter, r *http.Request, run string) {
-	w.Header().Set(runHeader, run)
-	if r.Header.Get(runHeader) != "" && r.ProtoAtLeast(1, 1) {
-		w.WriteHeader(http.StatusProcessing)
-	}
 }

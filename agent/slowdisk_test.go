@@ -4,7 +4,6 @@ import (
 	"context"
 	"fmt"
 	"log/slog"
-	"net"
 	"path/filepath"
 	"strings"
 	"sync/atomic"
@@ -58,14 +57,14 @@ func TestSlowDisk(t *testing.T) {
 		}
 		return good(batch)
 	}
-	listener, err := net.Listen("tcp", "127.0.0.1:0")
+	doors, err := openDoors("127.0.0.1:0")
 	if err != nil {
 		t.Fatal(err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
 	ended := make(chan error, 1)
 	go func() {
-		ended <- a.work(ctx, books, listener, newReports(history{db: books.store, zone: s.Zone, through: books.through.Load}))
+		ended <- a.work(ctx, books, doors, newAddress(doors.private.Addr()), newReports(history{db: books.store, zone: s.Zone, through: books.through.Load}))
 	}()
 	awaitView(t, snapshots, "the subscription", func(v *view.Snapshot) bool { return v.Broker.Topics == 3 })
 

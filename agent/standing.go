@@ -35,15 +35,13 @@ func standingOf(site string, at int64, b *warn.Board, place *time.Location) *ans
 
 // boards tells the warnings that stand while the agent runs.
 type boards struct {
-	run    string
 	health *health
 	zone   *time.Location
 }
 
-func newBoards(r *reports, h *health) *boards { return &boards{r.run, h, r.history.zone} }
+func newBoards(r *reports, h *health) *boards { return &boards{h, r.history.zone} }
 
 func (s *boards) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	tellRun(w, r, s.run)
 	v := s.health.latest.Load()
 	if v == nil {
 		http.Error(w, "no beat yet", http.StatusServiceUnavailable)

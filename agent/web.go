@@ -28,7 +28,7 @@ come first.`
 
 // handler serves the metrics, the two answers that supervisors ask for, reports, explanations
 // and exports.
-func handler(metrics http.Handler, health *health, reports *reports, explains *explains, orders chan<- mark) http.Handler {
+func handler(metrics http.Handler, health *health, reports *reports, explains *explains) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", faultless(health.alive))
@@ -36,7 +36,6 @@ func handler(metrics http.Handler, health *health, reports *reports, explains *e
 	mux.Handle("GET "+reportPath, reports)
 	mux.Handle("GET "+explainPath, explains)
 	mux.Handle("GET "+exportPath, newExports(reports))
-	mux.Handle("POST "+markPath, &marks{reports.run, reports.key, orders})
 	mux.Handle("GET "+warningsPath, newBoards(reports, health))
 	mux.Handle("GET "+eventsPath, newEvents(reports))
 	mux.HandleFunc("GET /{$}", func(w http.ResponseWriter, _ *http.Request) {
