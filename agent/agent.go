@@ -24,6 +24,7 @@ import (
 	"golang.org/x/sync/errgroup"
 
 	"heatreeve/agent/metrics"
+	"heatreeve/agent/page"
 	"heatreeve/agent/relay"
 	"heatreeve/agent/site"
 	"heatreeve/agent/view"
@@ -59,6 +60,7 @@ type Agent struct {
 	relay   *relay.Relay  // nil where the site publishes nothing; for the beat alone
 	reached chan struct{} // one slot: a broker has sent all that it sends without an acknowledgement
 	latest  atomic.Pointer[view.Snapshot]
+	page    atomic.Pointer[page.Page] // nil before it is served
 	health  health
 	commits prometheus.Histogram
 	watch   *watch // for the beat alone
@@ -133,6 +135,12 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
 	defer endSession()
 	g, ctx := errgroup.WithContext(ctx)
+	explains := newExplains(reports, a.site, a.questions)
+	page, err := page.New(newDesk(&a.health, reports, explains), page.Options{Site: a.site, Version: a.o.Version, Safety: Safety, Ended: ctx.Done()})
+	if err != nil {
+		return err
+	}
+	a.page.Store(page)
 	through := books.through.Load()
 	g.Go(func() error {
 		a.awaitClock(sessionCtx, through)
@@ -142,7 +150,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 		defer endSession()
 		return a.beats(ctx, books)
 	})
-	public := handler(metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, newExplains(reports, a.site, a.questions))
+	public := handler(page, metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, explains)
 	g.Go(func() error { return serve(ctx, doors.public, public) })
 	g.Go(func() error { return serve(ctx, doors.private, private(at.run, at.key, privately(public, a.orders))) })
 	return g.Wait()

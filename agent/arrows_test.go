@@ -35,8 +35,8 @@ var arrows = map[string][]string{
 	"agent/account": {
 		"agent/loads",
 	},
-	"agent/answer":   {"agent/account", "agent/loads", "agent/warn"},
-	"agent/shown":    {"thermo/unit"},
+	"agent/answer": {"agent/account", "agent/loads", "agent/warn"},
+	"agent/shown":  {"thermo/unit"},
 	"agent/page": {
 		"agent/answer", "agent/shown", "agent/view", "agent/warn", "agent/working", "agent/loads", "agent/design", "agent/design/exchanger", "agent/site", "thermo", "thermo/unit", "ingest/quality",
 	},

@@ -51,6 +51,9 @@ func (a *Agent) publish(r *rhythm) {
 	}
 	a.tellLate(r, v)
 	a.latest.Store(v)
+	if p := a.page.Load(); p != nil {
+		p.Beat()
+	}
 	if a.o.Beat != nil {
 		a.o.Beat(v)
 	}

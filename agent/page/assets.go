@@ -1,0 +1,90 @@
+package page
+
+import (
+	"bytes"
+	"compress/gzip"
+	"crypto/sha256"
+	"embed"
+	"encoding/hex"
+	"io/fs"
+	"mime"
+	"net/http"
+	"path"
+	"strings"
+	"sync"
+)
+
+//go:embed assets
+var assetFiles embed.FS
+
+// asset is a file as it is served.
+type asset struct {
+	kind, tag   string
+	plain, gzip []byte
+}
+
+// packed has all assets, compressed once.
+var packed = sync.OnceValue(func() map[string]asset {
+	all := make(map[string]asset)
+	err := fs.WalkDir(assetFiles, "assets", func(name string, d fs.DirEntry, err error) error {
+		if err != nil || d.IsDir() {
+			return err
+		}
+		text, err := assetFiles.ReadFile(name)
+		all["/"+name] = pack(name, text)
+		return err
+	})
+	if err != nil {
+		panic(err) // what is embedded can be read
+	}
+	return all
+})
+
+func pack(name string, text []byte) asset {
+	sum := sha256.Sum256(text)
+	a := asset{kind: mime.TypeByExtension(path.Ext(name)), tag: `"` + hex.EncodeToString(sum[:8]) + `"`, plain: text}
+	switch path.Ext(name) { // as no table of the system may have it
+	case ".js":
+		a.kind = "text/javascript; charset=utf-8"
+	case ".css":
+		a.kind = "text/css; charset=utf-8"
+	case ".svg":
+		a.kind = "image/svg+xml"
+	case "":
+		a.kind = "text/plain; charset=utf-8"
+	}
+	var b bytes.Buffer
+	z, _ := gzip.NewWriterLevel(&b, gzip.BestCompression)
+	_, _ = z.Write(text) // into memory
+	_ = z.Close()
+	if b.Len() < len(text) {
+		a.gzip = b.Bytes()
+	}
+	return a
+}
+
+// assets serves what is embedded. It is asked for anew each time, and costs nothing where it
+// has not changed.
+func assets() http.Handler {
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		a, ok := packed()[path.Clean(r.URL.Path)]
+		if !ok {
+			http.NotFound(w, r)
+			return
+		}
+		h := w.Header()
+		h.Set("Content-Type", a.kind)
+		h.Set("ETag", a.tag)
+		h.Set("Cache-Control", "no-cache")
+		h.Set("Vary", "Accept-Encoding")
+		switch {
+		case strings.Contains(r.Header.Get("If-None-Match"), a.tag):
+			w.WriteHeader(http.StatusNotModified)
+		case a.gzip != nil && strings.Contains(r.Header.Get("Accept-Encoding"), "gzip"):
+			h.Set("Content-Encoding", "gzip")
+			_, _ = w.Write(a.gzip)
+		default:
+			_, _ = w.Write(a.plain)
+		}
+	})
+}

@@ -1,0 +1,148 @@
+package page
+
+import (
+	"cmp"
+	"net/http"
+	"slices"
+	"strings"
+	"time"
+
+	"heatreeve/agent/design"
+	"heatreeve/agent/view"
+	"heatreeve/agent/warn"
+)
+
+// sheetOfLoads is the first page: a band a load.
+type sheetOfLoads struct {
+	frame
+	At       time.Time // event time, by the clock of the site
+	Began    bool      // the agent has had its first beat
+	Tallies  []tally
+	Find     string
+	Bands    []band
+	Hidden   int // bands that the filter leaves out
+	Warnings []warning
+	Hours    []string // along the ribbons
+	From, To string   // of the ribbons
+	Faults   []string // of broker and history
+}
+
+// tally counts the loads of a verdict, and may be ticked to see those alone.
+type tally struct {
+	Verdict string
+	Count   int
+	Ticked  bool
+}
+
+// warning is one that stands, or was not acknowledged.
+type warning struct{ Subject, Href, Text, State string }
+
+func (p *Page) sheet(w http.ResponseWriter, r *http.Request) {
+	v := r.URL.Query()
+	x := sheetOfLoads{frame: p.frameOf(r, "Sheet of loads", "find", "verdict"), Find: v.Get("find")}
+	s := p.Snapshot()
+	if s != nil {
+		x.fill(p, s, v["verdict"])
+	}
+	for _, d := range design.Verdicts {
+		x.Tallies = append(x.Tallies, tally{d.String(), x.count(s, p, d), slices.Contains(v["verdict"], d.String())})
+	}
+	status := http.StatusOK
+	if x.Fault != "" {
+		status = http.StatusBadRequest
+	}
+	p.render(w, status, "sheet.html", &x)
+}
+
+// count is how many loads have a verdict now.
+func (x *sheetOfLoads) count(s *view.Snapshot, p *Page, d design.Verdict) (n int) {
+	if s == nil {
+		return 0
+	}
+	at := p.Now().UnixNano()
+	for i := range s.Loads {
+		if _, verdict := s.Current(i, at); verdict == d {
+			n++
+		}
+	}
+	return n
+}
+
+func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
+	x.Began = true
+	x.At = time.Unix(0, s.At).In(p.Site.Zone)
+	x.Faults = faults(s)
+	from := x.At.Add(-ribbonSpan)
+	x.From, x.To = from.Format("Mon 15:04"), x.At.Format("15:04")
+	for h := 0; h <= 24; h += 6 {
+		x.Hours = append(x.Hours, from.Add(time.Duration(h)*time.Hour).Format("15:04"))
+	}
+	for i := range s.Loads {
+		b := p.bandOf(&x.frame, s, i)
+		if !strings.Contains(strings.ToLower(b.Load), strings.ToLower(x.Find)) || len(verdicts) > 0 && !slices.Contains(verdicts, b.Verdict) {
+			x.Hidden++
+			continue
+		}
+		x.Bands = append(x.Bands, b)
+	}
+	slices.SortStableFunc(x.Bands, func(a, b band) int { return cmp.Compare(a.attention(), b.attention()) })
+	x.Warnings = p.warningsOf(&x.frame, s, "")
+}
+
+// warningsOf are those of a load, or all.
+func (p *Page) warningsOf(f *frame, s *view.Snapshot, load string) (all []warning) {
+	listed := s.Warnings.Listed()
+	for i := range listed {
+		l := &listed[i]
+		if load != "" && l.Subject != load {
+			continue
+		}
+		x := warning{Subject: l.Subject, Text: l.Text(p.Site.Zone), State: stateOf(l, p.Site.Zone)}
+		if p.loadIndex(l.Subject) >= 0 {
+			x.Href = f.LoadLink(l.Subject)
+		}
+		all = append(all, x)
+	}
+	return all
+}
+
+// stateOf is where a warning stands with its operators.
+func stateOf(l *warn.Listed, zone *time.Location) string {
+	state := string(l.State())
+	if l.Mark != nil {
+		state += " by " + l.Mark.By
+	}
+	if l.Shelf != nil {
+		state += ", shelved until " + time.Unix(0, l.Shelf.Until).In(zone).Format("Mon 15:04")
+	}
+	return state
+}
+
+// loadIndex finds a load of the site, -1 for none.
+func (p *Page) loadIndex(name string) int {
+	for i := range p.Site.Loads {
+		if p.Site.Loads[i].Name == name {
+			return i
+		}
+	}
+	return -1
+}
+
+// faults are what keeps the agent from its work, and what the broker had kept of tags that have
+// said nothing since.
+func faults(s *view.Snapshot) (all []string) {
+	for _, b := range s.AllBrokers() {
+		if !b.Connected {
+			all = append(all, strings.TrimSuffix(b.Called()+" is not connected: "+b.Fault, ": "))
+		}
+	}
+	if s.History.Fault != "" {
+		all = append(all, "history: "+s.History.Fault)
+	}
+	for i := range s.Tags {
+		if t := &s.Tags[i]; t.Kept != "" {
+			all = append(all, t.Name+": the broker had kept "+t.Kept+", of an age that nobody knows; it is in no figure")
+		}
+	}
+	return all
+}
