@@ -20,11 +20,12 @@ type sheetOfLoads struct {
 	Tallies  []tally
 	Find     string
 	Bands    []band
-	Hidden   int // bands that the filter leaves out
-	Warnings []warning
-	Hours    []string // along the ribbons
-	From, To string   // of the ribbons
-	Faults   []string // of broker and history
+	Hidden   int       // bands that the filter leaves out
+	Warnings []warning // that stand
+	Returned []warning // that are over, and nobody has marked as seen
+	Hours    []string  // along the ribbons
+	From, To string    // of the ribbons
+	Faults   []string  // of broker and history
 }
 
 // tally counts the loads of a verdict, and may be ticked to see those alone.
@@ -86,11 +87,11 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 		x.Bands = append(x.Bands, b)
 	}
 	slices.SortStableFunc(x.Bands, func(a, b band) int { return cmp.Compare(a.attention(), b.attention()) })
-	x.Warnings = p.warningsOf(&x.frame, s, "")
+	x.Warnings, x.Returned = p.warningsOf(&x.frame, s, "")
 }
 
-// warningsOf are those of a load, or all.
-func (p *Page) warningsOf(f *frame, s *view.Snapshot, load string) (all []warning) {
+// warningsOf are those of a load, or all: that stand, and that have returned.
+func (p *Page) warningsOf(f *frame, s *view.Snapshot, load string) (standing, returned []warning) {
 	listed := s.Warnings.Listed()
 	for i := range listed {
 		l := &listed[i]
@@ -101,9 +102,13 @@ func (p *Page) warningsOf(f *frame, s *view.Snapshot, load string) (all []warnin
 		if p.loadIndex(l.Subject) >= 0 {
 			x.Href = f.LoadLink(l.Subject)
 		}
-		all = append(all, x)
+		if l.State() == warn.Returned {
+			returned = append(returned, x)
+		} else {
+			standing = append(standing, x)
+		}
 	}
-	return all
+	return standing, returned
 }
 
 // stateOf is where a warning stands with its operators.
