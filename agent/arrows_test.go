@@ -38,7 +38,7 @@ var arrows = map[string][]string{
 	"agent/answer": {"agent/account", "agent/loads", "agent/warn"},
 	"agent/shown":  {"thermo/unit"},
 	"agent/page": {
-		"agent/answer", "agent/shown", "agent/view", "agent/warn", "agent/working", "agent/loads", "agent/design", "agent/design/exchanger", "agent/site", "thermo", "thermo/unit", "ingest/quality",
+		"agent/account", "agent/answer", "agent/shown", "agent/view", "agent/warn", "agent/working", "agent/loads", "agent/design", "agent/design/exchanger", "agent/site", "thermo", "thermo/unit", "ingest/quality",
 	},
 	"agent/learning": {"agent/design/expect", "agent/site", "thermo/unit"},
 	"agent/parquet":  {},

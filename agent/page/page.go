@@ -47,6 +47,7 @@ func New(source Source, o Options) (*Page, error) {
 	p.templates = t
 	p.mux = http.NewServeMux()
 	p.mux.HandleFunc("GET /{$}", p.sheet)
+	p.mux.HandleFunc("GET /loads/{load}", p.oneLoad)
 	p.mux.HandleFunc("GET /ribbons", p.ribbonPaths)
 	p.mux.HandleFunc("GET /ribbon.svg", p.ribbonImage)
 	p.mux.HandleFunc("GET /api/v1/stream", p.stream)

@@ -69,6 +69,7 @@
 
   // verdicts counts by verdict, also loads that are not on the sheet.
   const verdicts = new Map();
+  const form = document.getElementById("filter"); // which the sheet of one load has not
   const boxes = [...document.querySelectorAll("#filter input[name=verdict]")];
   function tally(all) {
     for (const [i, verdict] of all) verdicts.set(i, verdict);
@@ -80,8 +81,9 @@
 
   const find = document.querySelector("#filter input[name=find]");
   const hidden = document.getElementById("hidden");
-  const before = +(hidden.textContent.match(/^\d+/) || [0])[0]; // that the agent has left out
+  const before = form ? +(hidden.textContent.match(/^\d+/) || [0])[0] : 0; // that the agent has left out
   function filter() {
+    if (!form) return;
     const name = find.value.toLowerCase();
     const wanted = boxes.filter((b) => b.checked).map((b) => b.value);
     let out = before;
@@ -93,7 +95,7 @@
     const text = out === 0 ? "" : out + (out === 1 ? " load left out" : " loads left out");
     if (hidden.textContent !== text) hidden.textContent = text;
   }
-  document.getElementById("filter").addEventListener("input", filter);
+  if (form) form.addEventListener("input", filter);
 
   // The link to the agent.
   const at = document.getElementById("at");

@@ -1,0 +1,90 @@
+package page
+
+import (
+	"context"
+	"slices"
+	"strconv"
+	"time"
+
+	"heatreeve/agent/answer"
+)
+
+// eventsPart tells what happened to a load, its tags and its exchangers, newest first.
+type eventsPart struct {
+	Fault  string
+	Rows   []eventRow
+	More   string // how many are left out
+	Unused string
+}
+
+type eventRow struct {
+	When, Lasted, Kind, Subject, Text string
+	Link                              string // the course about it
+}
+
+// mostEvents is how many are shown.
+const mostEvents = 40
+
+func (s *loadSheet) events(ctx context.Context) *eventsPart {
+	q := answer.EventQuery{From: s.address.begin(s.now).Format(addressMinute)}
+	if !s.address.live() {
+		q.To = s.address.end(s.now).Format(addressMinute)
+	}
+	p := &eventsPart{}
+	all, err := s.source.Events(ctx, q)
+	if err != nil {
+		p.Fault = err.Error()
+		return p
+	}
+	subjects := s.subjects()
+	var own []answer.Event
+	for i := range all.Events {
+		if e := &all.Events[i]; e.Subject == "" || slices.Contains(subjects, e.Subject) {
+			own = append(own, *e)
+		}
+	}
+	slices.Reverse(own)
+	if n := len(own) - mostEvents; n > 0 {
+		p.More = strconv.Itoa(n) + " earlier ones are left out; choose a shorter time."
+		own = own[:mostEvents]
+	}
+	if all.Unused > 0 {
+		p.Unused = strconv.Itoa(all.Unused) + " records of what happened cannot be used."
+	}
+	for i := range own {
+		p.Rows = append(p.Rows, s.eventRow(&own[i]))
+	}
+	return p
+}
+
+// subjects are whom events may tell of that matter to the load.
+func (s *loadSheet) subjects() []string {
+	names := []string{s.load.Name}
+	for _, from := range s.load.Sources() {
+		if !from.Constant() {
+			names = append(names, s.site.Tags[from.Tag].Name)
+		}
+	}
+	for i := range s.site.Exchangers {
+		if x := &s.site.Exchangers[i]; x.Hot == s.index || x.Cold == s.index {
+			names = append(names, x.Name)
+		}
+	}
+	return names
+}
+
+func (s *loadSheet) eventRow(e *answer.Event) eventRow {
+	r := eventRow{When: s.clock(e.At), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
+	switch {
+	case e.Until == nil:
+		r.Lasted = "still"
+	case e.Until.After(e.At):
+		r.Lasted = duration(e.Until.Sub(e.At).Truncate(time.Second))
+	}
+	about := s.address.until(e.At.Truncate(time.Minute).Add(30 * time.Minute)).over(&spans[0])
+	if about.to.After(s.now) {
+		about = about.until(time.Time{})
+	}
+	r.Link = about.minute(e.At.Truncate(time.Minute)).link("course")
+	return r
+}
