@@ -18,7 +18,8 @@ type loadPage struct {
 	Name     string
 	At       time.Time // event time, by the clock of the site
 	Band     *band     // nil before the first beat
-	Warnings []warning
+	Warnings []warning // that stand
+	Returned []warning // that stand no more, and were not acknowledged
 	Sheet    *loadSheet
 }
 
@@ -61,7 +62,8 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 	default:
 		x.At = time.Unix(0, s.At).In(p.Site.Zone)
 		b := p.bandOf(&x.frame, s, i)
-		x.Band, x.Warnings = &b, p.warningsOf(&x.frame, s, x.Name)
+		x.Band = &b
+		x.Warnings, x.Returned = p.warningsOf(&x.frame, s, x.Name)
 		sheet, err := p.sheetOf(s, i, r.URL.Query(), &x.frame)
 		if err != nil && x.Fault == "" {
 			x.Fault = err.Error()
