@@ -52,7 +52,13 @@ type Minute struct {
 	// Witness is the heat that another meter counted in spans that ended in this minute
 	// and were measured throughout, and Compared that of the load in the same spans.
 	Witness, Compared float64
+	// Expected is the duty that was expected of the load in this minute, W, and ExpectedError
+	// its standard uncertainty by what lasts; both are 0 where nothing was.
+	Expected, ExpectedError float64
 }
+
+// expects tells whether anything was expected of the load.
+func (m *Minute) expects() bool { return m.Expected != 0 || m.ExpectedError != 0 }
 
 // Register is the running total of a load: heat in J, times in s. Retention never
 // removes it.

@@ -126,21 +126,22 @@
 // load, and end with a CRC. Each is
 //
 //	1 byte shape: bits 0-2 the remainder of load / 8, bit 3 set, bit 4 if rare floats
-//	    follow, bit 5 if parts do, bit 6 if Uncertain does
+//	    follow, bit 5 if parts do, bit 6 if Uncertain does, bit 7 if Expected does
 //	floats Measured, Missing, Given, Taken
 //	floats Duty, DutyMin, DutyMax, DutyUncertainty, Flow, Inlet, Outlet, Pressure
 //	[floats Bridged, BridgedGiven, BridgedTaken, Latent, Witness, Compared, Content]
 //	[uvarint which parts there are: bit 0 the root of Random, bit 1 + i Systematic[i];
 //	    uint16 for each of these]
 //	[float Uncertain]
+//	[floats Expected, ExpectedError]
 //
 // Of a run of floats first come their counts, of 4 bits each, low half of a byte first,
 // and then their bytes. Of each float, XOR its forerunner, those bytes are told that are
 // left without zero bytes at the low end, high one first; a count up to 8 says how
 // many, and a greater one how many and 8, of those after a high byte that is zero. The
 // forerunner is 0, but Duty for DutyMin and DutyMax, Inlet for Outlet, Measured for Uncertain, and for Duty
-// |Given - Taken| / Measured if this is a number. The second run and Content are float32, the
-// others float64.
+// |Given - Taken| / Measured if this is a number. The second run, Content and the last run are float32,
+// the others float64.
 //
 // The uint16 of a part is its sign, 6 bits e and 9 bits m: (1 + m/512)·2^(e-16), but
 // infinite with the greatest e and m.
@@ -163,8 +164,8 @@
 //	1 byte tick, instant start less that of the span
 //
 // and goes on in the same arithmetic code: of each minute by how much the difference of two
-// times differs from the one before; then 8 bits, how many floats of a minute are told, and of
-// each in the order of [figures] 2 bits: 0 for all are 0, 1 for all are the float64 whose bits
+// times differs from the one before; then 8 bits, how many floats of a minute are told, those
+// after which are 0, and of each in the order of [figures] 2 bits: 0 for all are 0, 1 for all are the float64 whose bits
 // follow, and 2 for 1 bit full, 1 bit before, 2 bits like, and a number for each minute. Most
 // floats are told by the bits of the float32, or the part, that a minute keeps of them; with
 // full, or if they are told in full anyway, by those of the float64. These are made numbers of
@@ -181,9 +182,10 @@
 //	[uvarint which parts there are: bit 0 Random, bit 1 + i Systematic[i]; floats of
 //	    these]
 //	[float Uncertain]
+//	[floats Expected, ExpectedError]
 //
 // with the same forerunners, Duty for Demand as well, and HeatUncertainty for Untold; the
-// second run is float32. Hours that begin before built are
+// second and the last run are float32. Hours that begin before built are
 // there; later ones are told from their minutes. A commit that brings minutes of a
 // later hour builds those before it, and one that brings minutes of a built hour
 // builds it anew from all of its minutes, so that none counts twice. Of hours

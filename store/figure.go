@@ -79,6 +79,7 @@ var figures = func() []figure {
 	duty := func(m *Minute) float64 { return m.Duty }
 	flow := func(m *Minute) float64 { return m.Flow }
 	inlet := func(m *Minute) float64 { return m.Inlet }
+	expected := func(m *Minute) float64 { return m.Expected }
 	given := func(m *Minute) float64 { return m.Given }
 	heat := func(m *Minute) float64 { return m.Given - m.Taken }
 	likes := func(all ...func(*Minute) float64) []func(*Minute) float64 { return all }
@@ -109,5 +110,8 @@ var figures = func() []figure {
 		before := func(m *Minute) float64 { return m.Systematic[i-1] }
 		all = append(all, figure{func(m *Minute) *float64 { return &m.Systematic[i] }, scalePart, likes(heat, flow, before)})
 	}
-	return append(all, figure{func(m *Minute) *float64 { return &m.Uncertain }, scaleFull, likes(measured)})
+	return append(all,
+		figure{func(m *Minute) *float64 { return &m.Uncertain }, scaleFull, likes(measured)},
+		figure{func(m *Minute) *float64 { return &m.Expected }, scaleSingle, likes(duty)},
+		figure{func(m *Minute) *float64 { return &m.ExpectedError }, scaleSingle, likes(expected)})
 }()

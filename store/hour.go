@@ -42,7 +42,13 @@ type Hour struct {
 	// measured time of the minutes that have them, and 0 where none has. So is Content,
 	// K, of a vessel.
 	Inlet, Outlet, Pressure, Content float64
+	// Expected is the duty that was expected, W, and ExpectedError its standard uncertainty by
+	// what lasts, both means over the measured time of the minutes in which something was;
+	// both are 0 where nothing was.
+	Expected, ExpectedError float64
 }
+
+func (h *Hour) expects() bool { return h.Expected != 0 || h.ExpectedError != 0 }
 
 // Add makes h the sum of h and o: times, heat and mass add up, means are weighted by
 // Measured, and of Start and the extremes the least or greatest stands. What measured
@@ -60,6 +66,7 @@ func (h *Hour) Add(o Hour) {
 	h.Outlet = present(h.Outlet, h.Measured, o.Outlet, o.Measured)
 	h.Pressure = present(h.Pressure, h.Measured, o.Pressure, o.Measured)
 	h.Content = present(h.Content, h.Measured, o.Content, o.Measured)
+	h.addExpected(&o)
 	h.Measured += o.Measured
 	h.Bridged += o.Bridged
 	h.Missing += o.Missing
@@ -79,6 +86,19 @@ func (h *Hour) Add(o Hour) {
 	h.Witness += o.Witness
 	h.Compared += o.Compared
 	h.Mass += o.Mass
+}
+
+// addExpected weighs what was expected by all of the measured time of the hours in which
+// anything was.
+func (h *Hour) addExpected(o *Hour) {
+	switch {
+	case !o.expects():
+	case !h.expects():
+		h.Expected, h.ExpectedError = o.Expected, o.ExpectedError
+	default:
+		h.Expected = weighted(h.Expected, h.Measured, o.Expected, o.Measured)
+		h.ExpectedError = weighted(h.ExpectedError, h.Measured, o.ExpectedError, o.Measured)
+	}
 }
 
 // extremes leaves out those of what measured nothing.

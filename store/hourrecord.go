@@ -34,12 +34,18 @@ func (h *Hour) rare() [hourRare]told {
 // uncertain lists the field that shapeDoubt tells of.
 func (h *Hour) uncertain() [1]told { return [1]told{{float: &h.Uncertain, like: &h.Measured}} }
 
+// expected lists the fields that shapeExpected tells of.
+func (h *Hour) expected() [expectedFloats]told {
+	return [...]told{{&h.Expected, nil, true}, {&h.ExpectedError, nil, true}}
+}
+
 func (h *Hour) shares() shares { return shares{&h.Systematic, &h.Random} }
 
 // kept returns what of h is kept.
 func (h Hour) kept() Hour {
-	means := h.means(nil)
+	means, expected := h.means(nil), h.expected()
 	keep(means[:])
+	keep(expected[:])
 	return h
 }
 
@@ -74,6 +80,10 @@ func appendHour(b []byte, h Hour) []byte {
 		b[shape] |= shapeDoubt
 		b = appendFloats(b, doubt[:])
 	}
+	if expected := h.expected(); !allZero(expected[:]) {
+		b[shape] |= shapeExpected
+		b = appendFloats(b, expected[:])
+	}
 	return b
 }
 
@@ -104,7 +114,7 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 	minutes := p.uvarint()
 	h.Minutes = uint32(minutes)
 	sums, means := p.floats(hourSums), p.floats(hourMeans)
-	var rare, shares, doubt coded
+	var rare, shares, doubt, expected coded
 	var parts []told
 	if shape&shapeRare != 0 {
 		rare = p.floats(hourRare)
@@ -116,7 +126,10 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 	if shape&shapeDoubt != 0 {
 		doubt = p.floats(1)
 	}
-	if p.bad = p.bad || shape&(shapeUnused|shapeShort) != 0 || minutes > math.MaxUint32; p.bad || !want(h.Load) {
+	if shape&shapeExpected != 0 {
+		expected = p.floats(expectedFloats)
+	}
+	if p.bad = p.bad || shape&shapeShort != 0 || minutes > math.MaxUint32; p.bad || !want(h.Load) {
 		return
 	}
 	sumFields := h.sums()
@@ -132,5 +145,9 @@ func (p *parser) hour(h *Hour, want func(load uint32) bool) {
 	if shape&shapeDoubt != 0 {
 		doubtField := h.uncertain()
 		doubt.read(doubtField[:])
+	}
+	if shape&shapeExpected != 0 {
+		expectedFields := h.expected()
+		expected.read(expectedFields[:])
 	}
 }

@@ -43,7 +43,8 @@ func wave(load uint32, start int64) Minute {
 		Duty: 2 * n, DutyMin: -n, DutyMax: 3 * n, DutyUncertainty: n / 4, Flow: 0.5,
 		Inlet: 300 + n, Outlet: 290, Pressure: 2e5,
 		Bridged: 4, BridgedGiven: 7 * n, BridgedTaken: 2, Latent: n / 2, Uncertain: n / 3, Content: 310 - n, Witness: 90 * n, Compared: 99 * n,
-		Systematic: [Shares]float64{0: n, 2: -2 * n, Shares - 1: 3}, Random: n * n}
+		Systematic: [Shares]float64{0: n, 2: -2 * n, Shares - 1: 3}, Random: n * n,
+		Expected: 4 * n, ExpectedError: n / 2}
 }
 
 // TestHourFigures compares an hour with the sums of the numbers 1 to 60.
@@ -58,7 +59,8 @@ func TestHourFigures(t *testing.T) {
 		Duty: 61, DutyMin: -60, DutyMax: 180, Demand: 2 * 795 * 50.0 / 900, HeatUncertainty: 1830 * 50.0 / 4, Mass: 1500,
 		Inlet: 330.5, Outlet: 290, Pressure: 2e5,
 		Bridged: 240, BridgedGiven: 7 * 1830, BridgedTaken: 120, Latent: 915, Uncertain: 610, Content: 279.5, Witness: 90 * 1830, Compared: 99 * 1830,
-		Systematic: [Shares]float64{0: 1830, 2: -3660, Shares - 1: 180}, Random: 60 * 61 * 121 / 6}
+		Systematic: [Shares]float64{0: 1830, 2: -3660, Shares - 1: 180}, Random: 60 * 61 * 121 / 6,
+		Expected: 122, ExpectedError: 15.25}
 	want.Demand = float64(float32(want.Demand))
 	got := drain(t, s.Hours(3, start-hourNanos, start+hourNanos))
 	if len(got) != 1 || got[0] != want {
@@ -74,9 +76,10 @@ func TestHourFigures(t *testing.T) {
 	sum := got[0]
 	sum.Add(Hour{Load: 3, Start: start + hourNanos, Minutes: 60, Measured: 1000, Duty: 101, DutyMax: 200, Demand: 90, Mass: 1, Outlet: 330,
 		Bridged: 10, BridgedGiven: 1, BridgedTaken: 2, Latent: 85, Uncertain: 90, Content: 319.5, Witness: 3, Compared: 4,
-		Systematic: [Shares]float64{2: 60, 3: -1}, Random: 10, Untold: 5, HeatUncertainty: 5})
+		Systematic: [Shares]float64{2: 60, 3: -1}, Random: 10, Untold: 5, HeatUncertainty: 5,
+		Expected: 42, ExpectedError: 3.25})
 	if sum.Minutes != 120 || sum.Measured != 4000 || sum.Duty != 71 || sum.Demand != 90 || sum.DutyMax != 200 ||
-		sum.Inlet != 330.5 || sum.Outlet != 300 || sum.Start != start {
+		sum.Inlet != 330.5 || sum.Outlet != 300 || sum.Start != start || sum.Expected != 102 || sum.ExpectedError != 12.25 {
 		t.Errorf("two hours together are %+v", sum)
 	}
 	if sum.Bridged != 250 || sum.BridgedGiven != 12_811 || sum.BridgedTaken != 122 || sum.Latent != 1000 || sum.Uncertain != 700 || sum.Content != 289.5 ||

@@ -6,14 +6,20 @@ type hourSum struct {
 	duty                             float64    // J
 	quarters                         [4]float64 // J
 	inlet, outlet, pressure, content mean
+	expected, expectedError          mean
 }
 
 type mean struct{ sum, weight float64 }
 
 func (m *mean) add(x, weight float64) {
+	m.sum += x * weight
+	m.weight += weight
+}
+
+// present adds a figure of which 0 says that there is none.
+func (m *mean) present(x, weight float64) {
 	if x != 0 {
-		m.sum += x * weight
-		m.weight += weight
+		m.add(x, weight)
 	}
 }
 
@@ -52,10 +58,14 @@ func (s *hourSum) add(m *Minute) {
 	s.Witness += m.Witness
 	s.Compared += m.Compared
 	s.Mass += m.Flow * m.Measured
-	s.inlet.add(m.Inlet, m.Measured)
-	s.outlet.add(m.Outlet, m.Measured)
-	s.pressure.add(m.Pressure, m.Measured)
-	s.content.add(m.Content, m.Measured)
+	s.inlet.present(m.Inlet, m.Measured)
+	s.outlet.present(m.Outlet, m.Measured)
+	s.pressure.present(m.Pressure, m.Measured)
+	s.content.present(m.Content, m.Measured)
+	if m.expects() {
+		s.expected.add(m.Expected, m.Measured)
+		s.expectedError.add(m.ExpectedError, m.Measured)
+	}
 }
 
 // hour returns the sum of what was added, as it is kept.
@@ -66,5 +76,6 @@ func (s *hourSum) hour() Hour {
 	}
 	h.Demand = max(s.quarters[0], s.quarters[1], s.quarters[2], s.quarters[3]) / (quarterNanos / 1e9)
 	h.Inlet, h.Outlet, h.Pressure, h.Content = s.inlet.value(), s.outlet.value(), s.pressure.value(), s.content.value()
+	h.Expected, h.ExpectedError = s.expected.value(), s.expectedError.value()
 	return h.kept()
 }

@@ -17,12 +17,14 @@ const (
 	minuteMeans = 8
 	minuteRare  = 7
 
+	expectedFloats = 2 // of a minute, or of an hour
+
 	// What the first byte of a record holds beside the remainder of the load's number.
-	shapeShort  = 1 << 3 // a minute of this layout, not of the first
-	shapeRare   = 1 << 4 // floats follow that are 0 in most records
-	shapeParts  = 1 << 5 // the parts of the uncertainty follow
-	shapeDoubt  = 1 << 6 // Uncertain follows
-	shapeUnused = 1 << 7
+	shapeShort    = 1 << 3 // a minute of this layout, not of the first
+	shapeRare     = 1 << 4 // floats follow that are 0 in most records
+	shapeParts    = 1 << 5 // the parts of the uncertainty follow
+	shapeDoubt    = 1 << 6 // Uncertain follows
+	shapeExpected = 1 << 7 // Expected and ExpectedError follow
 )
 
 // sums lists the fields that are told in full.
@@ -46,13 +48,19 @@ func (m *Minute) rare() [minuteRare]told {
 // uncertain lists the field that shapeDoubt tells of.
 func (m *Minute) uncertain() [1]told { return [1]told{{float: &m.Uncertain, like: &m.Measured}} }
 
+// expected lists the fields that shapeExpected tells of.
+func (m *Minute) expected() [expectedFloats]told {
+	return [...]told{{&m.Expected, nil, true}, {&m.ExpectedError, nil, true}}
+}
+
 func (m *Minute) shares() shares { return shares{&m.Systematic, &m.Random} }
 
 // kept returns what of m is kept.
 func (m Minute) kept() Minute {
-	means, rare := m.means(nil), m.rare()
+	means, rare, expected := m.means(nil), m.rare(), m.expected()
 	keep(means[:])
 	keep(rare[:])
+	keep(expected[:])
 	for i, x := range m.Systematic {
 		m.Systematic[i] = roundPart(x)
 	}
@@ -103,6 +111,10 @@ func appendMinute(b []byte, m Minute) []byte {
 		b[shape] |= shapeDoubt
 		b = appendFloats(b, doubt[:])
 	}
+	if expected := m.expected(); !allZero(expected[:]) {
+		b[shape] |= shapeExpected
+		b = appendFloats(b, expected[:])
+	}
 	return b
 }
 
@@ -150,7 +162,7 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 		return
 	}
 	sums, means := p.floats(minuteSums), p.floats(minuteMeans)
-	var rare, doubt coded
+	var rare, doubt, expected coded
 	if shape&shapeRare != 0 {
 		rare = p.floats(minuteRare)
 	}
@@ -163,7 +175,10 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 	if shape&shapeDoubt != 0 {
 		doubt = p.floats(1)
 	}
-	if p.bad = p.bad || shape&shapeUnused != 0; p.bad || !want(m.Load) {
+	if shape&shapeExpected != 0 {
+		expected = p.floats(expectedFloats)
+	}
+	if p.bad || !want(m.Load) {
 		return
 	}
 	sumFields := m.sums()
@@ -178,6 +193,10 @@ func (p *parser) minute(m *Minute, want func(load uint32) bool) {
 	if shape&shapeDoubt != 0 {
 		doubtField := m.uncertain()
 		doubt.read(doubtField[:])
+	}
+	if shape&shapeExpected != 0 {
+		expectedFields := m.expected()
+		expected.read(expectedFields[:])
 	}
 	for i, f := range m.shares().of(which) {
 		*f.float = partValue(binary.LittleEndian.Uint16(parts[2*i:]))

@@ -50,6 +50,8 @@ func BenchmarkMinute(b *testing.B) {
 	}{
 		{"heat-alone", func(m *Minute) { m.Systematic, m.Random = [Shares]float64{}, 0 }},
 		{"with-parts", func(m *Minute) {}},
+		{"with-fixed-design", func(m *Minute) { m.Expected, m.ExpectedError = 640e3, 6.4e3 }},
+		{"with-moving-design", func(m *Minute) { m.Expected, m.ExpectedError = 0.98*m.Duty, 0.01*m.Duty }},
 		{"with-all", func(m *Minute) {
 			m.Measured, m.Bridged, m.BridgedGiven, m.Latent = 50, 10, m.Given/5.1, 20
 			m.Witness, m.Compared, m.Content = m.Given/1.01, m.Given/1.02, 340.1+m.Inlet/1e4

@@ -67,12 +67,22 @@ func appendMinuteColumn(b []byte, all []Minute, origin int64) []byte {
 	for _, at := range instants {
 		times.put(&w, t.late(at))
 	}
-	w.even(uint64(len(figures)), countBits)
+	tells := lastTold(all) + 1
+	w.even(uint64(tells), countBits)
 	column, like := make([]int64, len(all)), make([]int64, len(all))
-	for i := range figures {
+	for i := range tells {
 		figures[i].put(&w, all, column, like)
 	}
 	return w.finish(begin)
+}
+
+// lastTold is the index of the last figure that is not 0 in all minutes, or -1.
+func lastTold(all []Minute) int {
+	i := len(figures) - 1
+	for i >= 0 && figures[i].kind(all) == kindZero {
+		i--
+	}
+	return i
 }
 
 // put writes a figure of all minutes; column and like are room for as many numbers.
@@ -184,7 +194,7 @@ func parseMinuteColumn(all []Minute, b []byte, count uint64, origin int64, load 
 	if known > len(figures) {
 		return all[:begin], errRecord
 	}
-	for i := range known { // an earlier program knew fewer
+	for i := range known { // the others are 0, or an earlier program did not know them
 		if !figures[i].get(&r, all[begin:]) {
 			return all[:begin], errRecord
 		}

@@ -79,6 +79,7 @@ func TestFirstLayoutMinutes(t *testing.T) {
 			*f.float = 0
 		}
 		old.Systematic, old.Random, old.Uncertain = [Shares]float64{}, 0, 0
+		old.Expected, old.ExpectedError = 0, 0
 		if want := []Minute{old, beside.kept()}; err != nil || !sameMinutes(got, want) {
 			t.Fatalf("%+v, %v; want %+v", got, err, want)
 		}

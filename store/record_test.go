@@ -195,7 +195,7 @@ func floatsOf(m *Minute) (all []*float64) {
 	for i := range m.Systematic {
 		all = append(all, &m.Systematic[i])
 	}
-	return append(all, &m.Random, &m.Uncertain)
+	return append(all, &m.Random, &m.Uncertain, &m.Expected, &m.ExpectedError)
 }
 
 // minuteBits is a minute as numbers that compare by the bit.

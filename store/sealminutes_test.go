@@ -370,7 +370,7 @@ func TestUpgradeSecond(t *testing.T) {
 		for _, load := range []uint32{2, 12} {
 			all := drain(t, s.Minutes(load, math.MinInt64, math.MaxInt64))
 			want := wave(load, all[7].Start)
-			want.Uncertain = 0 // which that layout did not tell
+			want.Uncertain, want.Expected, want.ExpectedError = 0, 0, 0 // which that layout did not tell
 			if len(all) != 600 || all[7] != want || all[7].Start != 8*60*second {
 				t.Fatalf("load %d has %d minutes", load, len(all))
 			}
