@@ -24,7 +24,8 @@ type accounts struct {
 	verdicts   *design.Plant
 	place      *time.Location // whose clock tells the hour of the week
 	closed     []loads.Minute
-	roll       warn.Roll // of the warnings
+	expected   []expectation // of each minute of closed
+	roll       warn.Roll     // of the warnings
 	watched    []warn.Watched
 
 	site, zone string            // name of the plant, and time zone of its reports
@@ -50,18 +51,38 @@ func newAccounts(cfg loads.Config, designs design.Config, site [32]byte, place *
 // accounts begin.
 const mostGap = 366 * 24 * time.Hour
 
+// expectation is the duty that was expected of a minute, W, and its standard uncertainty by
+// what lasts; both are 0 where nothing was.
+type expectation struct{ duty, lasting float64 }
+
 // advance puts one beat through and returns the minutes that closed; they are
-// good until the next call.
+// good until the next call, and so is what was expected of them. By an exchanger something is
+// expected once both of its sides have closed: of a minute whose other side closes in a later
+// beat, nothing is, whenever the history is written.
 func (a *accounts) advance(b loads.Beat) []loads.Minute {
 	if from := a.engine.Through(); from > 0 && b.Through-from > int64(mostGap) {
 		a.engine.Adopt(loads.Beat{Through: b.Through - int64(firstReach)})
 	}
 	a.closed = a.engine.Advance(b, a.closed[:0])
+	a.expected = append(a.expected[:0], make([]expectation, len(a.closed))...)
 	for i := range a.closed {
 		m := &a.closed[i]
-		a.verdicts.Observe(m.Load, minuteOf(m), a.hour(m.Start))
+		for _, t := range a.verdicts.Observe(m.Load, minuteOf(m), a.hour(m.Start)) {
+			a.expect(i, t)
+		}
 	}
 	return a.closed
+}
+
+// expect keeps what was told of one of the minutes of closed, of which i was the last that the
+// judges have seen.
+func (a *accounts) expect(i int, t design.Told) {
+	for ; i >= 0; i-- {
+		if m := &a.closed[i]; m.Load == t.Load && m.Start == t.Start {
+			a.expected[i] = expectation{t.Duty, t.Lasting}
+			return
+		}
+	}
 }
 
 // hour is that of the week in which an instant lies, 0 from Monday midnight.

@@ -7,6 +7,7 @@ import (
 	"io"
 	"iter"
 	"math"
+	"slices"
 	"strings"
 	"time"
 
@@ -43,8 +44,11 @@ func minuteColumns() []string {
 		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "uncertain_s", "witness_counted_J", "witness_served_J",
 		"random_variance_J2",
 	}
-	return append(columns, systematicColumns()...)
+	return slices.Concat(columns, systematicColumns(), expectedColumns())
 }
+
+// expectedColumns are those of what was expected, with its standard uncertainty by what lasts.
+func expectedColumns() []string { return []string{"expected_duty_W", "expected_duty_uncertainty_W"} }
 
 const (
 	readingTime = "2006-01-02T15:04:05.000000000Z"
@@ -204,4 +208,12 @@ func minuteRow(r *rows, m *store.Minute) {
 	for _, x := range m.Systematic[:loads.Parts] {
 		r.number(x)
 	}
+	expectedRow(r, m.Expected, m.ExpectedError)
+}
+
+// expectedRow leaves out what there is none of.
+func expectedRow(r *rows, duty, lasting float64) {
+	expects := duty != 0 || lasting != 0
+	r.meanIf(expects, duty)
+	r.meanIf(expects, lasting)
 }

@@ -175,7 +175,7 @@ func TestExportOfMinutes(t *testing.T) {
 		m, _ := ramp(load, k)
 		m.Flow, m.Inlet, m.Outlet, m.Pressure = 2.5, 353.15, 333.15, 3e5
 		if k == 61 {
-			m = store.Minute{Missing: 60}
+			m = store.Minute{Missing: 60, Expected: 6100, ExpectedError: 0.1}
 		}
 		if k == 60 {
 			m.Uncertain = 17.5
@@ -186,15 +186,15 @@ func TestExportOfMinutes(t *testing.T) {
 	parts := strings.Repeat(",0", int(loads.Parts))
 	text, err := exported(h, Selection{Load: "ramp", From: "2026-10-24T00:00", To: "2026-10-24T00:04"})
 	want := strings.Join(minuteColumns(), ",") + "\r\n" +
-		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000,,0,0,0,0,17.5,0,0,0" + parts + "\r\n" +
-		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,,,0,0,0,0,0,0,0,0" + parts + "\r\n" +
-		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0,0" + parts + "\r\n"
+		"2026-10-24T00:00:00Z,58,2,348000,0,6000,5995,6005,60,2.5,353.15,333.15,300000,,0,0,0,0,17.5,0,0,0" + parts + ",,\r\n" +
+		"2026-10-24T00:01:00Z,0,60,0,0,,,,,,,,,,0,0,0,0,0,0,0,0" + parts + ",6100,0.1\r\n" +
+		"2026-10-24T00:03:00Z,58,2,365400,0,6300,6295,6305,63,2.5,353.15,333.15,300000,,0,0,0,0,0,0,0,0" + parts + ",,\r\n"
 	if err != nil || text != want {
 		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
 	}
 	text, err = exported(h, Selection{Load: "ramp", From: "2026-10-24T00:01", To: "2026-10-24T00:02", Format: "json"})
 	want = `{"start":"2026-10-24T00:01:00Z","measured_s":0,"missing_s":60,"given_J":0,"taken_J":0,"duty_W":null,"lowest_duty_W":null,"highest_duty_W":null,"duty_uncertainty_W":null,"mass_flow_kg_per_s":null,"inlet_K":null,"outlet_K":null,"pressure_Pa":null,"content_K":null,"bridged_s":0,`
-	if err != nil || !strings.HasPrefix(text, want) || !strings.HasSuffix(text, `,"`+minuteColumns()[len(minuteColumns())-1]+`":0}`+"\n") {
+	if err != nil || !strings.HasPrefix(text, want) || !strings.HasSuffix(text, `,"`+minuteColumns()[len(minuteColumns())-1]+`":0.1}`+"\n") {
 		t.Errorf("%v\n%s\nwant\n%s", err, text, want)
 	}
 	if text, err = exported(h, Selection{Load: "ramp"}); err != nil || strings.Count(text, "\n") != 3000 {
@@ -207,6 +207,7 @@ func TestMinuteRow(t *testing.T) {
 	m := store.Minute{
 		Start: week.UnixNano(), Measured: 40, Bridged: 15, Missing: 5, Given: 1, Taken: 2, BridgedGiven: 3, BridgedTaken: 4, Latent: 6, Uncertain: 33,
 		Duty: 7, DutyMin: -8, DutyMax: 9, DutyUncertainty: 10, Content: 338.15, Random: 11, Witness: 12, Compared: 13,
+		Expected: 0, ExpectedError: 17,
 	}
 	for p := range loads.Parts {
 		m.Systematic[p] = -100 - float64(p)
@@ -227,7 +228,7 @@ func TestMinuteRow(t *testing.T) {
 	for name, want := range map[string]any{
 		"start": "2026-10-23T23:00:00Z", "measured_s": 40., "bridged_s": 15., "missing_s": 5., "given_J": 1., "taken_J": 2., "bridged_given_J": 3., "bridged_taken_J": 4.,
 		"latent_s": 6., "uncertain_s": 33., "duty_W": 7., "lowest_duty_W": -8., "highest_duty_W": 9., "duty_uncertainty_W": 10., "mass_flow_kg_per_s": 0., "inlet_K": nil, "pressure_Pa": nil,
-		"content_K": 338.15, "random_variance_J2": 11., "witness_counted_J": 12., "witness_served_J": 13.,
+		"content_K": 338.15, "random_variance_J2": 11., "witness_counted_J": 12., "witness_served_J": 13., "expected_duty_W": 0., "expected_duty_uncertainty_W": 17.,
 		"systematic_flow_J": -100., "systematic_heat_capacity_J": -100 - float64(loads.PartCp), "systematic_density_J": -100 - float64(loads.PartDensity),
 	} {
 		if got[name] != want {

@@ -1,6 +1,7 @@
 package agent
 
 import (
+	"slices"
 	"strings"
 
 	"heatreeve/agent/loads"
@@ -16,7 +17,7 @@ func hourColumns() []string {
 		"bridged_s", "bridged_given_J", "bridged_taken_J", "latent_s", "uncertain_s", "witness_counted_J", "witness_served_J",
 		"unparted_uncertainty_J", "random_variance_J2",
 	}
-	return append(columns, systematicColumns()...)
+	return slices.Concat(columns, systematicColumns(), expectedColumns())
 }
 
 // systematicColumns are those of the parts of an uncertainty.
@@ -49,4 +50,5 @@ func hourRow(r *rows, h *store.Hour) {
 	for _, x := range h.Systematic[:loads.Parts] {
 		r.number(x)
 	}
+	expectedRow(r, h.Expected, h.ExpectedError)
 }

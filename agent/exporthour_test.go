@@ -18,6 +18,7 @@ func TestHourRow(t *testing.T) {
 	h := store.Hour{
 		Start: week.UnixNano(), Minutes: 55, Measured: 3000, Bridged: 200, Missing: 100, Given: 1, Taken: 2, BridgedGiven: 3, BridgedTaken: 4, Latent: 6, Uncertain: 5,
 		Duty: 7, DutyMin: -8, DutyMax: 9, Demand: 14, Mass: 15, Content: 338.15, Random: 16, Witness: 12, Compared: 13, Untold: 12,
+		Expected: 18, ExpectedError: 0.5,
 	}
 	h.Systematic[loads.PartInlet], h.Systematic[loads.PartCp] = 3, -4
 	var b bytes.Buffer
@@ -39,7 +40,7 @@ func TestHourRow(t *testing.T) {
 		"start": "2026-10-23T23:00:00Z", "minutes": 55., "measured_s": 3000., "bridged_s": 200., "missing_s": 100., "given_J": 1., "taken_J": 2., "bridged_given_J": 3., "bridged_taken_J": 4.,
 		"latent_s": 6., "uncertain_s": 5., "uncertainty_J": wantU, "duty_W": 7., "lowest_duty_W": -8., "highest_duty_W": 9., "demand_W": 14., "mass_kg": 15., "inlet_K": nil, "pressure_Pa": nil,
 		"content_K": 338.15, "random_variance_J2": 16., "unparted_uncertainty_J": 12., "witness_counted_J": 12., "witness_served_J": 13.,
-		"systematic_inlet_J": 3., "systematic_heat_capacity_J": -4.,
+		"expected_duty_W": 18., "expected_duty_uncertainty_W": 0.5, "systematic_inlet_J": 3., "systematic_heat_capacity_J": -4.,
 	} {
 		if got[name] != want {
 			t.Errorf("%s is %v, want %v", name, got[name], want)

@@ -285,8 +285,8 @@ func (l *ledger) beat(received []ingest.Reading, through int64) {
 		beat.Readings[i] = readingOf(r)
 	}
 	closed := l.accounts.advance(beat)
-	for _, m := range closed {
-		l.batch.Minutes = append(l.batch.Minutes, l.minute(m))
+	for i, m := range closed {
+		l.batch.Minutes = append(l.batch.Minutes, l.minute(m, l.accounts.expected[i]))
 		l.attested.add(m.Load, m.Start, m.Witness, m.Compared)
 	}
 	if len(closed) > 0 {
@@ -302,7 +302,7 @@ func readingOf(r ingest.Reading) loads.Reading {
 	return loads.Reading{Tag: r.Tag, At: r.At, Value: r.Value, Mark: r.Mark}
 }
 
-func (l *ledger) minute(m loads.Minute) store.Minute {
+func (l *ledger) minute(m loads.Minute, e expectation) store.Minute {
 	kept := store.Minute{
 		Load: l.loadIDs[m.Load], Start: m.Start,
 		Measured: seconds(m.Measured), Bridged: seconds(m.Bridged), Missing: seconds(m.Missing),
@@ -311,6 +311,7 @@ func (l *ledger) minute(m loads.Minute) store.Minute {
 		Duty: m.Duty, DutyMin: m.DutyMin, DutyMax: m.DutyMax, DutyUncertainty: m.Uncertainty,
 		Flow: m.MassFlow, Inlet: m.Inlet, Outlet: m.Outlet, Pressure: m.Pressure, Content: m.Content,
 		Random: m.Random, Witness: m.Witness, Compared: m.Compared,
+		Expected: e.duty, ExpectedError: e.lasting,
 	}
 	copy(kept.Systematic[:], m.Systematic[:])
 	return kept

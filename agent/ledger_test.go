@@ -5,6 +5,7 @@ import (
 	"log/slog"
 	"math"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -81,14 +82,33 @@ func feed(l *ledger, from, until int64) {
 	}
 }
 
-// A run that is cut off after any commit goes on to the same totals and the same
-// verdict as one that was not.
+// minutesOf commits what waits, and returns the minutes that the history has of the first load.
+func minutesOf(t *testing.T, l *ledger) (all []store.Minute) {
+	t.Helper()
+	if err := l.commit(clock, false); err != nil {
+		t.Fatal(err)
+	}
+	for m, err := range l.store.Minutes(l.loadIDs[0], math.MinInt64, math.MaxInt64) {
+		if err != nil {
+			t.Fatal(err)
+		}
+		all = append(all, m)
+	}
+	return all
+}
+
+// A run that is cut off after any commit goes on to the same totals, the same verdict and the
+// same minutes, with what was expected of each, as one that was not.
 func TestLedgerAfterACut(t *testing.T) {
 	s := parsed(t, benchSite)
 	whole, shut := open(t, s, filepath.Join(t.TempDir(), "h.db"), store.Options{})
 	feed(whole, 0, 600)
 	want, verdict := whole.registers(), whole.accounts.verdicts.Verdict(0, false, false)
+	minutes := minutesOf(t, whole)
 	shut()
+	if len(minutes) != 9 || minutes[8].Expected != 193e3 {
+		t.Fatalf("%d minutes, the last is %+v, want 9 of which 193 kW were expected", len(minutes), minutes[len(minutes)-1])
+	}
 	if verdict != design.Holding || want[0].Given == 0 {
 		t.Fatalf("verdict %v, given %g J: the course does not show anything", verdict, want[0].Given)
 	}
@@ -113,6 +133,9 @@ func TestLedgerAfterACut(t *testing.T) {
 	}
 	if got := l.accounts.verdicts.Verdict(0, false, false); got != verdict {
 		t.Errorf("verdict %v, want %v", got, verdict)
+	}
+	if got := minutesOf(t, l); !slices.Equal(got, minutes) {
+		t.Errorf("minutes\n%+v\nwant\n%+v", got, minutes)
 	}
 }
 

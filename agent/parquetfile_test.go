@@ -84,11 +84,11 @@ func TestParquetOfMinutes(t *testing.T) {
 	w := parquet.NewWriter(&want, columns)
 	r := newRows(f, false, names)
 	minutes := []store.Minute{
-		{Start: week.UnixNano(), Measured: 60, Given: 7e5, Duty: 11666.5, Inlet: 353.25, Random: 3, Witness: 1, Systematic: [store.Shares]float64{-5}},
+		{Start: week.UnixNano(), Measured: 60, Given: 7e5, Duty: 11666.5, Inlet: 353.25, Random: 3, Witness: 1, Systematic: [store.Shares]float64{-5}, Expected: 11700, ExpectedError: 23.5},
 		{Start: week.Add(time.Minute).UnixNano(), Missing: 60},
 	}
 	for i, figures := range []map[string]float64{
-		{"measured_s": 60, "given_J": 7e5, "duty_W": 11666.5, "inlet_K": 353.25, "random_variance_J2": 3, "witness_counted_J": 1, "systematic_flow_J": -5},
+		{"measured_s": 60, "given_J": 7e5, "duty_W": 11666.5, "inlet_K": 353.25, "random_variance_J2": 3, "witness_counted_J": 1, "systematic_flow_J": -5, "expected_duty_W": 11700, "expected_duty_uncertainty_W": 23.5},
 		{"missing_s": 60},
 	} {
 		minuteRow(r, &minutes[i])
@@ -98,8 +98,8 @@ func TestParquetOfMinutes(t *testing.T) {
 		w.Instant(minutes[i].Start)
 		for _, name := range names[1:] {
 			means := slices.Contains([]string{"duty_W", "lowest_duty_W", "highest_duty_W", "duty_uncertainty_W", "mass_flow_kg_per_s"}, name)
-			states := slices.Contains([]string{"inlet_K", "outlet_K", "pressure_Pa", "content_K"}, name)
-			if figures[name] == 0 && (means && minutes[i].Measured == 0 || states) {
+			some := slices.Contains([]string{"inlet_K", "outlet_K", "pressure_Pa", "content_K", "expected_duty_W", "expected_duty_uncertainty_W"}, name)
+			if figures[name] == 0 && (means && minutes[i].Measured == 0 || some) {
 				w.Null()
 			} else {
 				w.Number(figures[name])

@@ -3,6 +3,7 @@ package agent
 import (
 	"bytes"
 	"encoding/gob"
+	"maps"
 	"math/rand/v2"
 	"reflect"
 	"slices"
@@ -41,10 +42,21 @@ func aDay(t *testing.T, s *site.Site) (readings []loads.Reading, from, to int64)
 	return readings, start, start + int64(span)
 }
 
-// judged puts readings through accounts in beats, and returns the state of the verdicts and
-// the warnings that came and went. Where chance is given, readings arrive in any order within
+// course is what judges made of a plant's readings.
+type course struct {
+	state    design.Saved
+	warnings []design.Warning // that came and went
+	expected map[loadMinute]expectation
+}
+
+type loadMinute struct {
+	load  int
+	start int64
+}
+
+// judged puts readings through accounts in beats. Where chance is given, readings arrive in any order within
 // the lateness, beats are of any length, and the accounts are saved and restored at times.
-func judged(t *testing.T, s *site.Site, readings []loads.Reading, from, to int64, chance *rand.Rand) (design.Saved, []design.Warning) {
+func judged(t *testing.T, s *site.Site, readings []loads.Reading, from, to int64, chance *rand.Rand) course {
 	t.Helper()
 	open := func() *accounts {
 		a, err := newAccounts(plantOf(s), designOf(s), s.Digest, s.Zone)
@@ -64,7 +76,13 @@ func judged(t *testing.T, s *site.Site, readings []loads.Reading, from, to int64
 		}
 		slices.SortStableFunc(arrivals, func(x, y loads.Reading) int { return int(arrival[x] - arrival[y]) })
 	}
-	var told []design.Warning
+	c := course{expected: make(map[loadMinute]expectation)}
+	advance := func(b loads.Beat) {
+		for i, m := range a.advance(b) {
+			c.expected[loadMinute{m.Load, m.Start}] = a.expected[i]
+		}
+		c.warnings = append(c.warnings, a.verdicts.Changed()...)
+	}
 	for at := from; at < to; {
 		step := int64(time.Minute)
 		if chance != nil {
@@ -75,9 +93,8 @@ func judged(t *testing.T, s *site.Site, readings []loads.Reading, from, to int64
 		if n < 0 {
 			n = len(arrivals)
 		}
-		a.advance(loads.Beat{Readings: arrivals[:n], Through: at - lateness})
+		advance(loads.Beat{Readings: arrivals[:n], Through: at - lateness})
 		arrivals = arrivals[n:]
-		told = append(told, a.verdicts.Changed()...)
 		if chance != nil && chance.IntN(10) == 0 {
 			state, err := a.save()
 			if err != nil {
@@ -89,21 +106,24 @@ func judged(t *testing.T, s *site.Site, readings []loads.Reading, from, to int64
 			}
 		}
 	}
-	a.advance(loads.Beat{Readings: arrivals, Through: to})
-	return a.verdicts.Save(), append(told, a.verdicts.Changed()...)
+	advance(loads.Beat{Readings: arrivals, Through: to})
+	c.state = a.verdicts.Save()
+	return c
 }
 
-// A day's verdicts, their grounds and the warnings are the same whichever way the readings
+// A day's verdicts, their grounds, the warnings and what was expected are the same whichever way the readings
 // arrived, however the beats were cut, and however often the agent was started anew.
 func TestVerdictsAreTheSame(t *testing.T) {
 	s := parsed(t, string(configs.Demo))
 	readings, from, to := aDay(t, s)
-	want, warnings := judged(t, s, readings, from, to, nil)
-	if len(warnings) < 2 {
-		t.Fatalf("%d warnings came and went in a day in which an exchanger fouls and is cleaned, want 2 or more", len(warnings))
+	all := judged(t, s, readings, from, to, nil)
+	want := all.state
+	if len(all.warnings) < 2 {
+		t.Fatalf("%d warnings came and went in a day in which an exchanger fouls and is cleaned, want 2 or more", len(all.warnings))
 	}
 	for seed := range uint64(4) {
-		got, told := judged(t, s, readings, from, to, rand.New(rand.NewPCG(seed, 1)))
+		one := judged(t, s, readings, from, to, rand.New(rand.NewPCG(seed, 1)))
+		got := one.state
 		for name, j := range want.Judges {
 			if other := got.Judges[name]; kept(t, other) != kept(t, j) {
 				t.Errorf("seed %d, load %q: another state of the verdict", seed, name)
@@ -117,8 +137,11 @@ func TestVerdictsAreTheSame(t *testing.T) {
 		if len(want.Exchanges) == 0 {
 			t.Error("the plant has no exchanger to compare")
 		}
-		if !reflect.DeepEqual(told, warnings) {
-			t.Errorf("seed %d: warnings\n%+v\nwant\n%+v", seed, told, warnings)
+		if !reflect.DeepEqual(one.warnings, all.warnings) {
+			t.Errorf("seed %d: warnings\n%+v\nwant\n%+v", seed, one.warnings, all.warnings)
+		}
+		if !maps.Equal(one.expected, all.expected) {
+			t.Errorf("seed %d: not the same was expected of all %d minutes", seed, len(all.expected))
 		}
 	}
 }

@@ -17,6 +17,15 @@ type Plant struct {
 	judges    []*Judge
 	exchanges []*Exchange
 	changed   []Warning
+	told      []Told
+}
+
+// Told is what was expected of a load in one minute: its duty, W, and the standard uncertainty
+// of that by what lasts.
+type Told struct {
+	Load          int
+	Start         int64 // of the minute
+	Duty, Lasting float64
 }
 
 // NewPlant returns the judges of a plant that has shown nothing yet.
@@ -53,10 +62,17 @@ func (x *Exchange) named(loads []Target) any {
 // Observe takes in the next minute of a load, with the hour of the week in which it began.
 // Minutes of one load come in the order of time. What a load is judged by its exchanger for
 // waits for the other side's minute, at most a quarter of an hour.
-func (p *Plant) Observe(load int, m Minute, hour int) {
+//
+// It returns what was expected of those minutes that could be judged by now, where anything
+// was: of m, or where an exchanger tells, of the minutes for which m had to come. It is good
+// until the next call.
+func (p *Plant) Observe(load int, m Minute, hour int) []Told {
 	j := p.judges[load]
+	p.told = p.told[:0]
 	if !j.target.ByExchanger || j.exchange == nil {
-		j.Observe(&m, j.expected(&m, hour))
+		e := j.expected(&m, hour)
+		p.tell(load, m.Start, &e)
+		j.Observe(&m, e)
 	}
 	if x := j.exchange; x != nil {
 		x.Pairing.enter(j.side, m)
@@ -67,18 +83,27 @@ func (p *Plant) Observe(load int, m Minute, hour int) {
 		p.changed = x.take(p.changed)
 	}
 	p.changed = j.take(p.changed)
+	return p.told
+}
+
+func (p *Plant) tell(load int, start int64, e *expect.Expected) {
+	if e.Known {
+		p.told = append(p.told, Told{load, start, e.Duty, e.Lasting})
+	}
 }
 
 // settle judges a minute of both sides of an exchanger.
 func (p *Plant) settle(x *Exchange, pair [2]*Minute) {
 	steady := true
-	sides := [...]*Judge{p.judges[x.of.Hot], p.judges[x.of.Cold]}
+	of := [...]int{x.of.Hot, x.of.Cold}
+	sides := [...]*Judge{p.judges[of[0]], p.judges[of[1]]}
 	var today [2]expect.Expected
 	if sides[0].target.ByExchanger || sides[1].target.ByExchanger {
 		today = x.expected(pair)
 	}
 	for side, j := range sides {
 		if m := pair[side]; m != nil && j.target.ByExchanger {
+			p.tell(of[side], m.Start, &today[side])
 			j.Observe(m, today[side])
 			p.changed = j.take(p.changed)
 		}
