@@ -29,7 +29,7 @@ var arrows = map[string][]string{
 	"agent/loads":      {"thermo", "ingest/quality", "ingest/screen"},
 	"agent/design":     {"agent/design/...", "thermo"},
 	"agent/design/...": {},
-	"agent/site":       {"thermo/...", "agent/design/exchanger"},
+	"agent/site":       {"thermo/...", "agent/design/exchanger", "agent/shown"},
 	"agent/warn":       {"agent/design"},
 	"agent/view":       {"agent/warn", "agent/loads", "agent/design", "agent/design/...", "ingest/quality"},
 	"agent/account": {

@@ -76,9 +76,9 @@ func refused(t *testing.T, r *running, data string) {
 		{http.MethodGet, own, "/", "", "", http.StatusForbidden},
 		{http.MethodGet, own, "/metrics", run, "nobody", http.StatusForbidden},
 		{http.MethodGet, own, "/metrics", run, key, http.StatusOK},
-		{http.MethodGet, own, "/mark", run, key, http.StatusNotFound},
+		{http.MethodGet, own, "/mark", run, key, http.StatusMethodNotAllowed},
 		{http.MethodDelete, own, "/", run, key, http.StatusMethodNotAllowed},
-		{http.MethodPost, r.address, "/mark", run, key, http.StatusNotFound},
+		{http.MethodPost, r.address, "/mark", run, key, http.StatusMethodNotAllowed},
 		{http.MethodPost, r.address, "/", run, key, http.StatusMethodNotAllowed},
 	} {
 		req, err := http.NewRequestWithContext(t.Context(), tt.method, "http://"+tt.at+tt.path, strings.NewReader("do=unshelve&subject=hot-water&by=x&reason=y"))

@@ -37,7 +37,7 @@ type Page struct {
 
 // New returns the page of a site.
 func New(source Source, o Options) (*Page, error) {
-	p := &Page{Source: source, Options: o, usual: shown.Usual()}
+	p := &Page{Source: source, Options: o, usual: o.Site.Shown}
 	p.feed.init()
 	p.ribbons.init()
 	t, err := template.New("").Funcs(template.FuncMap{"spaced": spaced}).ParseFS(templateFiles, "templates/*.html")

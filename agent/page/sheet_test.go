@@ -15,6 +15,7 @@ import (
 	"heatreeve/agent/answer"
 	"heatreeve/agent/design"
 	"heatreeve/agent/loads"
+	"heatreeve/agent/shown"
 	"heatreeve/agent/site"
 	"heatreeve/agent/view"
 	"heatreeve/agent/working"
@@ -53,7 +54,7 @@ var noon = time.Date(2026, 12, 1, 12, 0, 0, 0, time.UTC)
 // mill is a plant of loads in several states.
 func mill(t *testing.T, all ...view.Load) (*Page, *fixed) {
 	t.Helper()
-	s := &site.Site{Name: "Mill", Zone: time.UTC}
+	s := &site.Site{Name: "Mill", Zone: time.UTC, Shown: shown.Usual()}
 	for i := range all {
 		all[i].Until = math.MaxInt64
 		s.Loads = append(s.Loads, site.HeatLoad{Name: all[i].Name, Stream: &site.Stream{Gives: i%2 == 0}})

@@ -50,22 +50,40 @@ func Usual() Units {
 // is as before says, and usual where that has none. The error names the parameter first.
 func Choose(v url.Values, before Units) (Units, error) {
 	u := before
-	for i, field := range u.fields() {
+	for i := range kinds {
 		k := &kinds[i]
 		name := v.Get(k.name)
-		if name == "" {
-			if field.Symbol != "" {
-				continue
-			}
+		if name == "" && u.fields()[i].Symbol == "" {
 			name = k.choices[0]
 		}
-		found, err := unit.LookupAs(name, k.of)
-		if err != nil || !slices.Contains(k.choices, found.Symbol) {
-			return before, fmt.Errorf("%s %q is no unit to show it in; allowed are %s", k.name, name, strings.Join(k.choices, ", "))
+		if name == "" {
+			continue
 		}
-		*field = found
+		if err := u.Set(k.name, name); err != nil {
+			return before, fmt.Errorf("%s %w", k.name, err)
+		}
 	}
 	return u, nil
+}
+
+// Kinds names what there are units of: duty, heat, temperature and flow.
+func Kinds() []string {
+	var names []string
+	for i := range kinds {
+		names = append(names, kinds[i].name)
+	}
+	return names
+}
+
+// Set chooses the unit of a kind, by any of its usual spellings.
+func (u *Units) Set(of, name string) error {
+	i := slices.IndexFunc(kinds[:], func(k kind) bool { return k.name == of })
+	found, err := unit.LookupAs(name, kinds[i].of)
+	if err != nil || !slices.Contains(kinds[i].choices, found.Symbol) {
+		return fmt.Errorf("%q is no unit to show it in; allowed are %s", name, strings.Join(kinds[i].choices, ", "))
+	}
+	*u.fields()[i] = found
+	return nil
 }
 
 // Values are the parameters that lead from usual to u: what is alike is left out, so that

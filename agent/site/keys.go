@@ -4,12 +4,13 @@ import "slices"
 
 // keys are the keys of each block. A star stands for a name that the file gives.
 var keys = map[string][]string{
-	"": {"site", "timezone", "barometer", "broker", "brokers", "fluids", "tags", "loads", "exchangers", "timing", "history", "publish"},
+	"": {"site", "timezone", "barometer", "broker", "brokers", "fluids", "tags", "loads", "exchangers", "timing", "history", "publish", "shown_in"},
 	"broker": {"url", "client_id", "ca", "certificate", "key", "server_name", "min_tls", "username", "password_file", "password_env",
 		"subscribe", "availability", "queue", "commands", "host_id"},
-	"publish": {"topic", "every", "broker"},
-	"timing":  {"grid", "lateness", "ahead", "commit", "bridge"},
-	"history": {"keep", "size"},
+	"publish":  {"topic", "every", "broker"},
+	"shown_in": {"duty", "heat", "temperature", "flow"},
+	"timing":   {"grid", "lateness", "ahead", "commit", "bridge"},
+	"history":  {"keep", "size"},
 	"tags.*": {"topic", "unit", "value", "time", "time_unit", "quality", "unit_at", "samples", "step",
 		"signal", "lead", "differential", "cut_off", "accuracy", "max_age", "range", "broker",
 		"resolution", "deadband", "reports", "alive", "counts",

@@ -42,6 +42,7 @@ func (r *reader) read(v value) {
 	r.readTellers()
 	r.checkTopics()
 	r.publish(o)
+	r.shownIn(o)
 	if r.gauge {
 		o.need("barometer", "the air pressure at the plant, such as 101.3 kPa: the file has gauge pressures")
 	}

@@ -20,6 +20,7 @@ import (
 	"fmt"
 	"time"
 
+	"heatreeve/agent/shown"
 	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
 )
@@ -41,6 +42,7 @@ type Site struct {
 	Timing     Timing
 	History    History
 	Publish    Publish
+	Shown      shown.Units // what the page shows figures in, unless its reader chooses otherwise
 }
 
 // Declared is how many of the tags the file declares; those behind them tell whether a
