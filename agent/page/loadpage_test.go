@@ -113,11 +113,15 @@ func TestWorkingOfAMinute(t *testing.T) {
 	p := newFakePlant(t)
 	p.working.Sections[0].Lines = append(p.working.Sections[0].Lines, working.Line{Words: "outlet", Value: math.NaN(), Reading: &working.Sample{Tag: "TT-202", At: midday, Quality: "bad", Reason: "no-value", Fault: "bad reading"}},
 		working.Line{Words: "a remark without a value"})
+	p.working.Sections = append(p.working.Sections, working.Section{Title: working.CausesTitle, Lines: []working.Line{{Words: "said twice"}}})
 	page := parsed(t, sheetOf(t, p, "hot-water", "at=2026-12-02T10:30"))
 	w := byID(t, page, "working")
-	tells(t, w, "it serves 612 ± 10 kW; it is holding", "Readings: good", "m mass flow [1] V × ρ = 0.004 × 930 3.72 kg/s",
+	tells(t, w, "it serves 612 ± 10 kW; it is holding", "Readings: good", "m mass flow [1] V × ρ = 0.004 × 930 = 3.72 kg/s",
 		"T1 inlet 403.15 K from TT-201 at 12:00:00.000, 0.25 s old, good", "TT-202 at 12:00:00.000, 0 s old, bad (no-value), not used: bad reading", "a remark without a value",
 		"fouling, milk-heater (weight 0.70): less heat passes", "duty 612.3 kW (3.2 standard uncertainties)", "Sources a table", "Notes a note")
+	if strings.Contains(text(w), "said twice") {
+		t.Error("the causes stand among the lines as well")
+	}
 	if q := p.explains[0]; q.At != "2026-12-02T10:30:00Z" || q.Load != "hot-water" {
 		t.Errorf("asked for %+v", q)
 	}

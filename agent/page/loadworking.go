@@ -105,6 +105,9 @@ func (s *loadSheet) tell(p *workingPart, w *working.Working) {
 		}
 	}
 	for i := range w.Sections {
+		if w.Sections[i].Title == working.CausesTitle {
+			continue // they stand before the lines
+		}
 		step := workingStep{Title: w.Sections[i].Title}
 		for k := range w.Sections[i].Lines {
 			step.Lines = append(step.Lines, p.line(&w.Sections[i].Lines[k], s.zone))

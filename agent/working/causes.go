@@ -33,13 +33,16 @@ type Figure struct {
 // mostCauses is how many are told.
 const mostCauses = 6
 
+// CausesTitle is that of the section whose lines tell [Working.Causes].
+const CausesTitle = "What to look at first"
+
 // causes writes what to look at first. Rest is nothing to look at.
 func (p *page) causes() {
 	if p.Basis.Figure.Idle {
 		return
 	}
 	all := cause.Rank(p.evidence())
-	p.begin("What to look at first")
+	p.begin(CausesTitle)
 	defer p.end()
 	for i, c := range all[:min(len(all), mostCauses)] {
 		x := Cause{Kind: string(c.Kind), Subject: c.Subject, Weight: c.Weight, Says: c.Says}
