@@ -21,7 +21,7 @@ import (
 func (h *history) instant(q answer.Explanation) (at int64, err error) {
 	through := h.through()
 	if through <= 0 {
-		return 0, fmt.Errorf("%w yet; ask again once the first readings are committed", errNoRecord)
+		return 0, fmt.Errorf("%w yet; ask again once the first readings are committed", answer.ErrNoRecord)
 	}
 	if q.At == "" {
 		return through - 1, nil
@@ -147,7 +147,7 @@ func (h *history) minuteOf(load string, g int64) (m store.Minute, found bool, er
 
 // nothing says that neither readings nor a record are left.
 func (h *history) nothing(load string, g int64, s *site.Site) error {
-	err := fmt.Errorf("%w of load %q at %s, nor readings of its tags before", errNoRecord, load, exactly(time.Unix(0, g).In(s.Zone)))
+	err := fmt.Errorf("%w of load %q at %s, nor readings of its tags before", answer.ErrNoRecord, load, exactly(time.Unix(0, g).In(s.Zone)))
 	ids, bad := h.db.Names("load")
 	if bad != nil {
 		return errors.Join(err, bad)

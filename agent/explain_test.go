@@ -194,7 +194,7 @@ func TestThePastIsExplainedByTheSiteFileOfThen(t *testing.T) {
 		}
 	}
 	_, err := h.explain(t.Context(), answer.Explanation{Load: "main", At: at(-500)})
-	if !errors.Is(err, errNoRecord) || !strings.Contains(err.Error(), `of load "main" at 2023-11-14 22:05:40 +00:00, nor readings of its tags before`) {
+	if !errors.Is(err, answer.ErrNoRecord) || !strings.Contains(err.Error(), `of load "main" at 2023-11-14 22:05:40 +00:00, nor readings of its tags before`) {
 		t.Errorf("before the beginning: %v", err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
@@ -270,7 +270,7 @@ func TestNoFigureYetIsNotExplained(t *testing.T) {
 	name := s.site.Loads[0].Name
 	go func() { (<-questions).answer <- working.Subject{Site: s.site} }()
 	w, err := s.explain(t.Context(), answer.Explanation{Load: name})
-	if w != nil || !errors.Is(err, errNoRecord) || !strings.Contains(err.Error(), name) {
+	if w != nil || !errors.Is(err, answer.ErrNoRecord) || !strings.Contains(err.Error(), name) {
 		t.Errorf("%v, %v", w, err)
 	}
 }

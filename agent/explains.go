@@ -79,7 +79,7 @@ func (s *explains) explain(ctx context.Context, q answer.Explanation) (*working.
 		return nil, err
 	}
 	if x.Basis.Figure.At == 0 {
-		return nil, fmt.Errorf("%w of a figure of %s since the agent has started: that comes with its first readings, or half a minute later; an earlier one is explained at its time", errNoRecord, q.Load)
+		return nil, fmt.Errorf("%w of a figure of %s since the agent has started: that comes with its first readings, or half a minute later; an earlier one is explained at its time", answer.ErrNoRecord, q.Load)
 	}
 	return working.Of(x), nil
 }

@@ -133,7 +133,7 @@ func (x *export) write(ctx context.Context, w io.Writer) error {
 // nothing says that there is no row.
 func (x *export) nothing() error {
 	at := func(ns int64) string { return wallClock(time.Unix(0, ns).In(x.zone)) }
-	err := fmt.Errorf("%w: no %s", errNoRecord, x.what)
+	err := fmt.Errorf("%w: no %s", answer.ErrNoRecord, x.what)
 	if x.from != math.MinInt64 {
 		err = fmt.Errorf("%w from %s", err, at(x.from))
 	}

@@ -123,7 +123,7 @@ func refuse(w http.ResponseWriter, err error) {
 	switch {
 	case errors.As(err, &wrong):
 		status = http.StatusBadRequest
-	case errors.Is(err, errNoRecord):
+	case errors.Is(err, answer.ErrNoRecord):
 		status = http.StatusNotFound
 	}
 	http.Error(w, err.Error(), status)

@@ -3,6 +3,7 @@ package agent
 import (
 	"cmp"
 	"context"
+	"encoding/hex"
 	"errors"
 	"fmt"
 	"maps"
@@ -57,6 +58,7 @@ func (h *history) report(ctx context.Context, q answer.Query) (*answer.Report, e
 		return nil, err
 	}
 	h.addEvents(r, plan)
+	h.addSiteFiles(r, plan)
 	return r, h.addRegisters(r, ids, plan)
 }
 
@@ -82,16 +84,13 @@ func (h *history) fill(ctx context.Context, r *answer.Report, q answer.Query, pl
 	return nil
 }
 
-// errNoRecord says that there is nothing to report.
-var errNoRecord = errors.New("the history holds no record")
-
 func noRecord(r *answer.Report, chosen []string) error {
 	end := "to " + wallClock(r.To)
 	if !r.To.After(r.From) { // no end was given, and the history has ended before
 		end = "on"
 	}
 	return fmt.Errorf("%w of %s from %s %s; %s",
-		errNoRecord, strings.Join(chosen, ", "), wallClock(r.From), end, upTo(r.Accounted))
+		answer.ErrNoRecord, strings.Join(chosen, ", "), wallClock(r.From), end, upTo(r.Accounted))
 }
 
 // upTo tells how far a history goes.
@@ -237,6 +236,19 @@ func (l *loadAccount) cutNote(source *records) string {
 		text += fmt.Sprintf(": hours by the clock of %s are known only as long as there are minutes", zone)
 	}
 	return text
+}
+
+// addSiteFiles tells which site files were in force in the time of the report.
+func (h *history) addSiteFiles(r *answer.Report, plan account.Plan) {
+	all, err := h.db.Sites()
+	if err != nil {
+		r.Notes = append(r.Notes, fmt.Sprintf("which site files were in force is damaged in the history: %v", err))
+	}
+	for i, f := range all {
+		if over := i+1 < len(all) && all[i+1].From <= plan.From; !over && f.From < plan.Until() {
+			r.SiteFiles = append(r.SiteFiles, answer.SiteFile{From: time.Unix(0, f.From).In(plan.Zone), SHA256: hex.EncodeToString(f.Digest[:])})
+		}
+	}
 }
 
 // addRegisters puts the registers beside the sums where the report goes as far as the

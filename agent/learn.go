@@ -115,7 +115,7 @@ func (l *Lesson) minutes(ctx context.Context, data string, vessel bool) (all []l
 		return errors.Join(errs[:]...)
 	})
 	if err == nil && len(all) == 0 {
-		err = fmt.Errorf("%w with a measured minute of load %q in that time", errNoRecord, l.Load)
+		err = fmt.Errorf("%w with a measured minute of load %q in that time", answer.ErrNoRecord, l.Load)
 	}
 	return all, err
 }

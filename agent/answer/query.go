@@ -1,6 +1,7 @@
 package answer
 
 import (
+	"errors"
 	"fmt"
 	"net/url"
 	"slices"
@@ -50,6 +51,9 @@ func (q *Query) SetDemand(text string) error {
 type QueryError struct{ Text string }
 
 func (e *QueryError) Error() string { return e.Text }
+
+// ErrNoRecord says that there is nothing to answer with.
+var ErrNoRecord = errors.New("the history holds no record")
 
 // Wrongf returns a *[QueryError].
 func Wrongf(format string, args ...any) error { return &QueryError{fmt.Sprintf(format, args...)} }

@@ -25,6 +25,8 @@ type Report struct {
 	Loads     []LoadReport `json:"loads"`
 	Notes     []string     `json:"notes,omitempty"`
 	Events    []Event      `json:"events,omitempty"`
+	// SiteFiles are those that were in force in this time, by when each began.
+	SiteFiles []SiteFile `json:"site_files,omitempty"`
 	// Unused is how many records cannot be used, and are missing.
 	Unused int `json:"records_not_used,omitempty"`
 }
@@ -123,3 +125,18 @@ type Register struct {
 	Missing      float64 `json:"missing_s"`
 	Uncertain    float64 `json:"uncertain_s"` // within measured
 }
+
+// SiteFile is one that was in force from an instant on.
+type SiteFile struct {
+	From   time.Time `json:"from"`
+	SHA256 string    `json:"sha256"`
+}
+
+// ShortDigest is enough of the digest to tell files apart.
+func (f *SiteFile) ShortDigest() string { return f.SHA256[:min(12, len(f.SHA256))] }
+
+// Always tells that it was the first, before which there is no time.
+func (f *SiteFile) Always() bool { return f.From.Unix() <= 0 }
+
+// Minutes is the length of the demand windows in minutes.
+func (r *Report) Minutes() float64 { return r.Demand / 60 }

@@ -74,17 +74,22 @@ func (s *loadSheet) subjects() []string {
 }
 
 func (s *loadSheet) eventRow(e *answer.Event) eventRow {
-	r := eventRow{When: s.clock(e.At), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
-	switch {
-	case e.Until == nil:
-		r.Lasted = "still"
-	case e.Until.After(e.At):
-		r.Lasted = duration(e.Until.Sub(e.At).Truncate(time.Second))
-	}
+	r := eventRow{When: s.clock(e.At), Lasted: lasted(e), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
 	about := s.address.until(e.At.Truncate(time.Minute).Add(30 * time.Minute)).over(&spans[0])
 	if about.to.After(s.now) {
 		about = about.until(time.Time{})
 	}
 	r.Link = about.minute(e.At.Truncate(time.Minute)).link("course")
 	return r
+}
+
+// lasted is how long an event took; "" where it took no time.
+func lasted(e *answer.Event) string {
+	switch {
+	case e.Until == nil:
+		return "still"
+	case e.Until.After(e.At):
+		return duration(e.Until.Sub(e.At).Truncate(time.Second))
+	}
+	return ""
 }

@@ -48,6 +48,8 @@ func New(source Source, o Options) (*Page, error) {
 	p.mux = http.NewServeMux()
 	p.mux.HandleFunc("GET /{$}", p.sheet)
 	p.mux.HandleFunc("GET /loads/{load}", p.oneLoad)
+	p.mux.HandleFunc("GET /account", p.account)
+	p.mux.HandleFunc("GET /account.csv", p.accountCSV)
 	p.mux.HandleFunc("GET /ribbons", p.ribbonPaths)
 	p.mux.HandleFunc("GET /ribbon.svg", p.ribbonImage)
 	p.mux.HandleFunc("GET /api/v1/stream", p.stream)

@@ -27,14 +27,18 @@ type fixed struct {
 	snapshot *view.Snapshot
 	now      time.Time
 	series   func(answer.SeriesQuery) (*answer.Series, error)
+	report   func(answer.Query) (*answer.Report, error)
 }
 
 var errNothing = errors.New("nothing is kept")
 
 func (f *fixed) Snapshot() *view.Snapshot { return f.snapshot }
 func (f *fixed) Now() time.Time           { return f.now }
-func (f *fixed) Report(context.Context, answer.Query) (*answer.Report, error) {
-	return nil, errNothing
+func (f *fixed) Report(_ context.Context, q answer.Query) (*answer.Report, error) {
+	if f.report == nil {
+		return nil, errNothing
+	}
+	return f.report(q)
 }
 func (f *fixed) Explain(context.Context, answer.Explanation) (*working.Working, error) {
 	return nil, errNothing

@@ -11,7 +11,7 @@ import (
 )
 
 // Source is what the page shows. Its methods may be called at once by many. What is wrong with
-// a query is an [*answer.QueryError]; where there is no record, the error is ErrNoRecord.
+// a query is an [*answer.QueryError]; where there is no record, the error is [answer.ErrNoRecord].
 type Source interface {
 	// Snapshot is the agent at its last beat, nil before the first.
 	Snapshot() *view.Snapshot
