@@ -102,7 +102,7 @@ func speak(ctx context.Context, d *demo.Demo, subscribed <-chan struct{}) error 
 
 func (c *call) whereToLook(d *demo.Demo, at net.Addr) {
 	fmt.Fprintf(c.stdout, "%s, an invented plant, with a broker of its own at\n%s\n\n", d.Site.Name, d.Broker.URL())
-	fmt.Fprintf(c.stdout, "loads:   http://%s/\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n\n%s\n\n", at, at, at, agent.Safety)
+	fmt.Fprintf(c.stdout, "page:    http://%s/\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n\n%s\n\n", at, at, at, agent.Safety)
 }
 
 // display is the table of the loads: drawn over in a terminal, and from time to
