@@ -13,10 +13,11 @@ const (
 	MostPoints = 2000
 )
 
-// SeriesQuery asks for the course of a load.
+// SeriesQuery asks for the course of a load. From and To are instants as [account.Moment] reads
+// them.
 type SeriesQuery struct {
 	Load     string
-	From, To string // instants; To is empty for as far as the history goes
+	From, To string // To is empty for as far as the history goes
 	Points   int    // at most; 0 is UsualPoints
 	Zone     string // IANA name of the time zone; empty for the site's
 }
@@ -50,15 +51,18 @@ func SeriesQueryOf(v url.Values) (q SeriesQuery, err error) {
 		}
 	}
 	if points != "" {
-		if q.Points, err = strconv.Atoi(points); err != nil || q.Points < 1 || q.Points > MostPoints {
+		if q.Points, err = strconv.Atoi(points); err != nil || q.Points == 0 {
 			return q, Wrongf("points %q: allowed are 1 to %d", points, MostPoints)
 		}
 	}
-	return q, q.check()
+	return q, q.Check()
 }
 
-func (q *SeriesQuery) check() error {
+// Check tells what of q cannot be answered, by a *[QueryError].
+func (q *SeriesQuery) Check() error {
 	switch {
+	case q.Points < 0 || q.Points > MostPoints:
+		return Wrongf("points \"%d\": allowed are 1 to %d", q.Points, MostPoints)
 	case q.Load == "":
 		return Wrongf("load is missing; name the load whose course is asked for")
 	case q.From == "":
@@ -68,8 +72,12 @@ func (q *SeriesQuery) check() error {
 }
 
 // Series is the course of a load, thinned so that no peak is lost: a point is a span of equal
-// length, with the least and the greatest duty of its minutes. All columns are equally long;
-// what is null was not measured, or there is none.
+// length, with the least and the greatest duty of its minutes. Points begin at multiples of their
+// length by UTC, and follow each other without a gap from the one that holds From to the one that
+// holds the end of To or Accounted; the first and the last hold no more than lies within these,
+// unless minutes are no longer left. All columns are equally long; what is null was not measured,
+// or there is none. Means are by the measured time, what was expected by that in which something
+// was.
 type Series struct {
 	Load string    `json:"load"`
 	Zone string    `json:"zone"`
@@ -93,4 +101,6 @@ type Series struct {
 	Bridged     []float64  `json:"bridged_s"`
 	Given       []float64  `json:"given_J"`
 	Taken       []float64  `json:"taken_J"`
+	// Unused is how many records cannot be used, and are missing.
+	Unused int `json:"records_not_used,omitempty"`
 }
