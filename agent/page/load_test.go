@@ -5,6 +5,7 @@ import (
 	"math"
 	"net/http"
 	"net/url"
+	"path/filepath"
 	"strings"
 	"testing"
 	"time"
@@ -79,9 +80,11 @@ func (p *fakePlant) Series(_ context.Context, q answer.SeriesQuery) (*answer.Ser
 // midday is the newest instant of the invented plant.
 var midday = time.Date(2026, 12, 2, 12, 0, 0, 0, time.UTC)
 
-func newFakePlant(t *testing.T) *fakePlant {
+func newFakePlant(t *testing.T) *fakePlant { return fakePlantOf(t, "brackwater-creamery.yaml") }
+
+func fakePlantOf(t *testing.T, file string) *fakePlant {
 	t.Helper()
-	s, err := site.Load("../../configs/brackwater-creamery.yaml")
+	s, err := site.Load(filepath.Join("../../configs", file))
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -24,8 +24,8 @@ type cpPart struct {
 	Idle     bool // the day has no operating span
 }
 
-// cpRow is the specific heat at one temperature.
-type cpRow struct{ Where, Temperature, Cp string }
+// cpRow is the specific heat at one temperature, or why the fluid has none there.
+type cpRow struct{ Where, Temperature, Cp, Refused string }
 
 // cpPoints is how many points a curve has.
 const cpPoints = 49
@@ -37,8 +37,11 @@ const usualPressure = 101325
 const leastMargin = 15
 
 func (s *loadSheet) cp(ctx context.Context) *cpPart {
-	_, f := s.load.Fluid()
-	p := &cpPart{Fluid: f.Name(), Source: f.Source()}
+	name, f := s.load.Fluid()
+	p := &cpPart{Fluid: name, Source: f.Source()}
+	if f.Name() != name {
+		p.Source = name + " is " + f.Name() + ". " + p.Source
+	}
 	pressure := s.pressure()
 	p.Pressure = s.pressureText(pressure)
 	lo, hi, day, err := s.operating(ctx)
@@ -48,9 +51,9 @@ func (s *loadSheet) cp(ctx context.Context) *cpPart {
 	}
 	p.Idle = err == nil && math.IsNaN(lo)
 	from, to := cpSpan(f, pressure, lo, hi)
-	ts, cps, us := cpCurve(f, pressure, from, to)
+	ts, cps, us, err := cpCurve(f, pressure, from, to)
 	if len(ts) < 2 {
-		p.Fault = "The fluid has no specific heat at these temperatures and this pressure."
+		p.Fault = err.Error()
 		return p
 	}
 	s.drawCp(p, ts, cps, us, lo, hi)
@@ -58,7 +61,8 @@ func (s *loadSheet) cp(ctx context.Context) *cpPart {
 	return p
 }
 
-// pressure is the one that the curve is for, Pa: that of the newest figure, or of the file.
+// pressure is the one that the curve is for, Pa: that of the newest figure, or else of the file,
+// fixed or of its design.
 func (s *loadSheet) pressure() float64 {
 	if s.figure.Pressure > 0 {
 		return s.figure.Pressure
@@ -70,8 +74,11 @@ func (s *loadSheet) pressure() float64 {
 	case s.load.Vessel != nil:
 		from = s.load.Vessel.Pressure
 	}
-	if from.Constant() && from.Value > 0 {
+	switch {
+	case from.Constant() && from.Value > 0:
 		return from.Value
+	case s.load.Design.Pressure > 0:
+		return s.load.Design.Pressure
 	}
 	return usualPressure
 }
@@ -126,22 +133,26 @@ func cpSpan(f thermo.Fluid, p, lo, hi float64) (from, to float64) {
 		return from, to
 	}
 	margin := max(leastMargin, (hi-lo)/2)
-	return max(from, lo-margin), min(to, hi+margin)
+	if near, far := max(from, lo-margin), min(to, hi+margin); near < far {
+		return near, far
+	}
+	return from, to
 }
 
 // cpCurve are points of cp with its expanded uncertainty; where the fluid refuses one it is left
-// out.
-func cpCurve(f thermo.Fluid, p, from, to float64) (ts, cps, us []float64) {
+// out, and the error is the last of these.
+func cpCurve(f thermo.Fluid, p, from, to float64) (ts, cps, us []float64, refused error) {
 	for i := range cpPoints {
 		T := from + (to-from)*float64(i)/(cpPoints-1)
 		x, err := f.At(T, p)
 		if err != nil {
+			refused = err
 			continue
 		}
 		relative, _ := f.Uncertainty(T, p)
 		ts, cps, us = append(ts, T), append(cps, x.Cp), append(us, answer.CoverageFactor*relative*x.Cp)
 	}
-	return ts, cps, us
+	return ts, cps, us, refused
 }
 
 func (s *loadSheet) cpUnit() unit.Unit {
@@ -194,10 +205,10 @@ func (s *loadSheet) cpRows(p *cpPart, f thermo.Fluid, pressure, lo, hi float64) 
 		}
 		at, err := f.At(x.T, pressure)
 		if err != nil {
-			p.Rows = append(p.Rows, cpRow{x.where, told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), err.Error()})
+			p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), Refused: err.Error()})
 			continue
 		}
 		relative, _ := f.Uncertainty(x.T, pressure)
-		p.Rows = append(p.Rows, cpRow{x.where, told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), told(s.cpUnit(), at.Cp, answer.CoverageFactor*relative*at.Cp)})
+		p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), Cp: told(s.cpUnit(), at.Cp, answer.CoverageFactor*relative*at.Cp)})
 	}
 }

@@ -5,6 +5,7 @@ import (
 	"math"
 	"net/http"
 	"net/url"
+	"path/filepath"
 	"strings"
 	"testing"
 	"time"
@@ -12,6 +13,7 @@ import (
 	"golang.org/x/net/html"
 
 	"heatreeve/agent/answer"
+	"heatreeve/agent/loads"
 	"heatreeve/agent/working"
 )
 
@@ -290,5 +292,38 @@ func TestLoadsThatAreNone(t *testing.T) {
 	p.snapshot = nil
 	if w := get(p.page(t), "/loads/milk"); w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "no beat yet") {
 		t.Errorf("status %d: %s", w.Code, w.Body)
+	}
+}
+
+// Every load of every site file that comes with the program has a sheet, whatever its fluid: with
+// figures, blind, and in other units. No part of it says what is no number.
+func TestSheetOfEveryLoad(t *testing.T) {
+	files, err := filepath.Glob("../../configs/*.yaml")
+	if err != nil || len(files) < 5 {
+		t.Fatalf("site files %v, %v", files, err)
+	}
+	for _, file := range files {
+		p := fakePlantOf(t, filepath.Base(file))
+		for i := range p.site.Loads {
+			p.snapshot.Loads[i].Figure.Pressure = 0 // that of the file, which suits the fluid
+			for _, query := range []string{"", "temperature=°F&duty=ton of refrigeration&span=1y&by=month"} {
+				page := parsed(t, sheetOf(t, p, p.site.Loads[i].Name, strings.ReplaceAll(query, " ", "+")))
+				cp := byID(t, page, "cp")
+				if len(elements(cp, "path")) < 2 {
+					t.Errorf("%s: %s: no curve of %s", file, p.site.Loads[i].Name, text(cp))
+				}
+				for _, x := range append(elements(page, "path"), elements(page, "rect")...) {
+					for _, a := range x.Attr {
+						if strings.Contains(a.Val, "NaN") || strings.Contains(a.Val, "Inf") {
+							t.Errorf("%s: %s: %s=%q", file, p.site.Loads[i].Name, a.Key, a.Val)
+						}
+					}
+				}
+				if told := text(page); strings.Contains(told, "NaN") || strings.Contains(told, "+Inf") {
+					t.Errorf("%s: %s: %s", file, p.site.Loads[i].Name, told)
+				}
+				p.snapshot.Loads[i].Figure = loads.Figure{Fault: loads.Stale}
+			}
+		}
 	}
 }

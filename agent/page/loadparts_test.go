@@ -9,6 +9,7 @@ import (
 	"time"
 
 	"heatreeve/agent/answer"
+	"heatreeve/agent/loads"
 	"heatreeve/agent/shown"
 	"heatreeve/agent/view"
 )
@@ -115,6 +116,16 @@ func TestSpecificHeatOnThePage(t *testing.T) {
 			t.Errorf("the operating span is at %s", got)
 		}
 	}
+}
+
+// A load that is blind has no pressure: the curve is then for that of its design, so that hot
+// water is no steam. Where the fluid is another phase at a temperature, that is told.
+func TestSpecificHeatOfABlindLoad(t *testing.T) {
+	p := newFakePlant(t)
+	p.snapshot.Loads[0].Figure = loads.Figure{Fault: loads.Stale}
+	tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "cp"), "at 7.009 bar absolute", "warmest today 130.00 ± 0.47 °C 4264 ± 10 J/(kg K)")
+	p.site.Loads[0].Design.Pressure = 0
+	tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "cp"), "at 1.013 bar absolute", "°C water: pressure 101.325 kPa is below")
 }
 
 // The resistance of 4 K/MW rises by 0.5 K/MW a day: it comes to 10 K/MW twelve days after the
