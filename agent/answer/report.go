@@ -133,7 +133,7 @@ type SiteFile struct {
 }
 
 // ShortDigest is enough of the digest to tell files apart.
-func (f *SiteFile) ShortDigest() string { return f.SHA256[:min(12, len(f.SHA256))] }
+func (f *SiteFile) ShortDigest() string { return f.SHA256[:min(16, len(f.SHA256))] }
 
 // Always tells that it was the first, before which there is no time.
 func (f *SiteFile) Always() bool { return f.From.Unix() <= 0 }
