@@ -37,9 +37,14 @@ const HistoryFile = "history.db"
 // Options are what the agent needs besides its site.
 type Options struct {
 	Data    string // folder of the history; made when it is not there
-	Listen  string // address of the metrics, "host:port"
+	Listen  string // where everybody may look, "host:port"
 	Version string
 	Log     *slog.Logger
+	// WebConfig is a file of the Prometheus exporters' format that says which certificates and
+	// passwords who looks must have; "" for none.
+	WebConfig string
+	// Openly lets others than this machine look without either, by any name of it.
+	Openly bool
 	// Now is the clock that stamps arrivals and moves silent event time; nil is
 	// the system's, which is not followed at once where it is set. A demo may run a
 	// faster one. Waits and disk intervals keep to the system's clock.
@@ -55,6 +60,7 @@ type Options struct {
 type Agent struct {
 	site    *site.Site
 	o       Options
+	guard   guard
 	clock   *stepless // nil where Options give one
 	intakes []*intake
 	relay   *relay.Relay  // nil where the site publishes nothing; for the beat alone
@@ -71,6 +77,10 @@ type Agent struct {
 
 // New returns an agent for s that is not started yet.
 func New(s *site.Site, o Options) (*Agent, error) {
+	guard, err := newGuard(o)
+	if err != nil {
+		return nil, err
+	}
 	var clock *stepless
 	if o.Now == nil {
 		clock = systemClock(o.Log)
@@ -81,11 +91,14 @@ func New(s *site.Site, o Options) (*Agent, error) {
 	if err != nil {
 		return nil, err
 	}
-	a := &Agent{site: s, o: o, clock: clock, intakes: intakes, relay: newRelay(s), reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question), orders: make(chan mark)}
+	a := &Agent{site: s, o: o, guard: guard, clock: clock, intakes: intakes, relay: newRelay(s), reached: reached, commits: metrics.CommitSeconds(), questions: make(chan question), orders: make(chan mark)}
 	a.health.latest, a.health.now = &a.latest, o.Now
 	a.watch = newWatch(o.Log, len(s.Loads))
 	return a, nil
 }
+
+// URL is how a browser finds what listens at the address that Ready is told.
+func (a *Agent) URL(at net.Addr) string { return a.guard.url(at) }
 
 // Run opens the history and the listener, connects, and works until ctx ends; it
 // then commits, acknowledges, disconnects and closes, in this order. Being asked
@@ -116,6 +129,9 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 		return err
 	}
 	defer doors.close()
+	if err := a.guard.opened(doors.public.Addr(), a.o.Log); err != nil {
+		return err
+	}
 	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name }), units: maps.Clone(books.accounts.units)})
 	at := newAddress(doors.private.Addr())
 	if err := leaveAddress(a.o.Data, at); err != nil {
@@ -150,9 +166,14 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 		defer endSession()
 		return a.beats(ctx, books)
 	})
-	public := handler(page, metricsHandler(a.registry(), a.collector(), a.o.Log), &a.health, reports, explains)
-	g.Go(func() error { return serve(ctx, doors.public, public) })
-	g.Go(func() error { return serve(ctx, doors.private, private(at.run, at.key, privately(public, a.orders))) })
+	reg := a.registry()
+	reg.MustRegister(doors.metrics)
+	public := handler(page, metricsHandler(reg, a.collector(), a.o.Log), &a.health, reports, explains)
+	log := newSparing(a.o.Log.Handler(), sparingEvery)
+	g.Go(func() error { return a.guard.serve(ctx, doors.public, public, log) })
+	g.Go(func() error {
+		return servePrivate(ctx, doors.private, private(at.run, at.key, privately(public, a.orders)), log)
+	})
 	return g.Wait()
 }
 

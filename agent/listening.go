@@ -1,15 +1,33 @@
 package agent
 
 import (
+	"context"
+	"errors"
 	"fmt"
+	"log/slog"
 	"net"
+	"net/http"
+	"time"
+
+	"github.com/prometheus/exporter-toolkit/web"
+
+	"heatreeve/agent/metrics"
 )
 
 // doors are where the agent listens: for everybody at the address it was given, and for its own
 // command line at one that only the address file tells.
 type doors struct {
-	public, private net.Listener
+	public, private *places
+	metrics         metrics.Doors
 }
+
+const (
+	// mostPublic bounds the connections of everybody: a browser keeps up to six, and so many files
+	// open leave the history and the brokers theirs.
+	mostPublic = 256
+	// mostPrivate bounds those of the command line.
+	mostPrivate = 32
+)
 
 // openDoors opens both.
 func openDoors(public string) (*doors, error) {
@@ -22,11 +40,75 @@ func openDoors(public string) (*doors, error) {
 		all.Close()
 		return nil, fmt.Errorf("listen for the command line: %w", err)
 	}
-	return &doors{all, own}, nil
+	m := metrics.NewDoors()
+	return &doors{
+		public:  newPlaces(all, mostPublic, m.Open.WithLabelValues("public"), m.Waited.WithLabelValues("public")),
+		private: newPlaces(own, mostPrivate, m.Open.WithLabelValues("private"), m.Waited.WithLabelValues("private")),
+		metrics: m,
+	}, nil
 }
 
 // close closes what is still open.
 func (d *doors) close() {
 	d.public.Close()
 	d.private.Close()
+}
+
+// sparingEvery is the least time between two lines of the log about the same wrong of those who
+// look.
+const sparingEvery = 10 * time.Second
+
+// serve answers everybody on l until ctx ends, as far as the guard lets them.
+func (g *guard) serve(ctx context.Context, l *places, h http.Handler, log slog.Handler) error {
+	server := newServer(g.behind(h), log)
+	// The toolkit puts its passwords before the handler as it begins. What stands before these in
+	// turn is put there when the server asks for its context: after that, and before the first
+	// connection.
+	server.BaseContext = func(net.Listener) context.Context {
+		server.Handler = g.front(server.Handler)
+		return context.Background()
+	}
+	return until(ctx, server, l, func() error {
+		return web.Serve(l, server, &web.FlagConfig{WebConfigFile: &g.file}, slog.New(log))
+	})
+}
+
+// servePrivate answers the command line on l until ctx ends.
+func servePrivate(ctx context.Context, l *places, h http.Handler, log slog.Handler) error {
+	server := newServer(h, log)
+	return until(ctx, server, l, func() error { return server.Serve(l) })
+}
+
+// newServer bounds how long each step of a request may take; who has more to tell extends the
+// time for writing.
+func newServer(h http.Handler, log slog.Handler) *http.Server {
+	return &http.Server{
+		Handler: h, ReadHeaderTimeout: 5 * time.Second, ReadTimeout: 10 * time.Second,
+		WriteTimeout: 20 * time.Second, IdleTimeout: time.Minute, MaxHeaderBytes: 16 << 10,
+		HTTP2:    &http.HTTP2Config{MaxConcurrentStreams: 32, WriteByteTimeout: 20 * time.Second},
+		ErrorLog: slog.NewLogLogger(log, slog.LevelWarn),
+	}
+}
+
+// until has a server begin, and ends it with ctx; it then lets requests under way finish for a
+// moment.
+func until(ctx context.Context, server *http.Server, l *places, begin func() error) error {
+	server.ConnState = l.state
+	closed := make(chan struct{})
+	stop := context.AfterFunc(ctx, func() {
+		defer close(closed)
+		grace, cancel := context.WithTimeout(context.WithoutCancel(ctx), time.Second)
+		defer cancel()
+		if server.Shutdown(grace) != nil {
+			server.Close()
+		}
+	})
+	err := begin()
+	if !stop() {
+		<-closed
+	}
+	if errors.Is(err, http.ErrServerClosed) {
+		return nil
+	}
+	return fmt.Errorf("serve on %s: %w", l.Addr(), err)
 }

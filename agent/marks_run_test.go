@@ -76,7 +76,7 @@ func refused(t *testing.T, r *running, data string) {
 		{http.MethodGet, own, "/", "", "", http.StatusForbidden},
 		{http.MethodGet, own, "/metrics", run, "nobody", http.StatusForbidden},
 		{http.MethodGet, own, "/metrics", run, key, http.StatusOK},
-		{http.MethodGet, own, "/mark", run, key, http.StatusMethodNotAllowed},
+		{http.MethodGet, own, "/mark", run, key, http.StatusNotFound},
 		{http.MethodDelete, own, "/", run, key, http.StatusMethodNotAllowed},
 		{http.MethodPost, r.address, "/mark", run, key, http.StatusMethodNotAllowed},
 		{http.MethodPost, r.address, "/", run, key, http.StatusMethodNotAllowed},

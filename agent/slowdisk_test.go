@@ -30,7 +30,7 @@ func TestSlowDisk(t *testing.T) {
 	defer b.Close()
 	s := parsed(t, strings.Replace(benchSite, "mqtt://127.0.0.1:1883", b.URL(), 1)+"timing: {commit: 1 s}\n")
 	snapshots := make(chan *view.Snapshot, 1)
-	a, err := New(s, Options{Data: t.TempDir(), Log: slog.New(slog.DiscardHandler), Beat: func(v *view.Snapshot) {
+	a, err := New(s, Options{Data: t.TempDir(), Listen: "127.0.0.1:0", Log: slog.New(slog.DiscardHandler), Beat: func(v *view.Snapshot) {
 		select {
 		case <-snapshots:
 		default:

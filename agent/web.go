@@ -1,12 +1,8 @@
 package agent
 
 import (
-	"context"
-	"errors"
-	"fmt"
 	"io"
 	"log/slog"
-	"net"
 	"net/http"
 	"strings"
 	"time"
@@ -59,30 +55,4 @@ func faultless(faults func() []string) http.HandlerFunc {
 		}
 		http.Error(w, strings.Join(wrong, "\n"), http.StatusServiceUnavailable)
 	}
-}
-
-// serve answers on l until ctx ends; it then lets requests under way finish for a
-// moment.
-func serve(ctx context.Context, l net.Listener, h http.Handler) error {
-	server := &http.Server{
-		Handler: h, ReadHeaderTimeout: 5 * time.Second, ReadTimeout: 10 * time.Second,
-		WriteTimeout: 20 * time.Second, IdleTimeout: time.Minute, MaxHeaderBytes: 16 << 10,
-	}
-	closed := make(chan struct{})
-	stop := context.AfterFunc(ctx, func() {
-		defer close(closed)
-		grace, cancel := context.WithTimeout(context.WithoutCancel(ctx), time.Second)
-		defer cancel()
-		if server.Shutdown(grace) != nil {
-			server.Close()
-		}
-	})
-	err := server.Serve(l)
-	if !stop() {
-		<-closed
-	}
-	if errors.Is(err, http.ErrServerClosed) {
-		return nil
-	}
-	return fmt.Errorf("serve on %s: %w", l.Addr(), err)
 }

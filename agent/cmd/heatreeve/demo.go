@@ -21,7 +21,7 @@ import (
 
 func runDemo(ctx context.Context, c *call) error {
 	data := c.flags.String("data", "", "`DIR` that keeps the history; without it, the history is thrown away at the end")
-	listen := c.flags.String("listen", defaultListen, "`ADDR` of metrics and health, host:port")
+	looking := c.lookingOptions()
 	length := c.flags.Duration("for", 0, "end by itself after `DURATION`, such as 10s or 5m")
 	speed := c.flags.Float64("speed", 1, fmt.Sprintf("run the plant `N` times faster, 1 to %d", demo.MaxSpeed))
 	if err := c.parse(0, ""); err != nil {
@@ -32,6 +32,10 @@ func runDemo(ctx context.Context, c *call) error {
 	}
 	if *length < 0 {
 		return wrongf("heatreeve demo: --for %s is not a length of time", *length)
+	}
+	o, err := looking.options(c.name)
+	if err != nil {
+		return err
 	}
 	if *length > 0 {
 		var cancel context.CancelFunc
@@ -46,12 +50,13 @@ func runDemo(ctx context.Context, c *call) error {
 		defer os.RemoveAll(dir)
 		*data = dir
 	}
-	return c.demo(ctx, *data, *listen, *speed)
+	o.Data = *data
+	return c.demo(ctx, o, *speed)
 }
 
 // demo runs plant, broker and agent until ctx ends.
-func (c *call) demo(ctx context.Context, data, listen string, speed float64) error {
-	before, err := agent.EventTime(data)
+func (c *call) demo(ctx context.Context, o agent.Options, speed float64) error {
+	before, err := agent.EventTime(o.Data)
 	if err != nil {
 		return err
 	}
@@ -65,18 +70,18 @@ func (c *call) demo(ctx context.Context, data, listen string, speed float64) err
 	seen := false // a first figure; before it there is nothing to show
 	subscribed := make(chan struct{})
 	heard := sync.OnceFunc(func() { close(subscribed) })
-	a, err := agent.New(d.Site, agent.Options{
-		Data: data, Listen: listen, Version: version, Log: log, Now: d.Clock.Now,
-		Ready: func(at net.Addr) { c.whereToLook(d, at) },
-		Beat: func(s *view.Snapshot) {
-			if s.Broker.Topics > 0 {
-				heard()
-			}
-			if seen = seen || anyMeasured(s); seen {
-				display.Show(s)
-			}
-		},
-	})
+	o.Version, o.Log, o.Now = version, log, d.Clock.Now
+	o.Beat = func(s *view.Snapshot) {
+		if s.Broker.Topics > 0 {
+			heard()
+		}
+		if seen = seen || anyMeasured(s); seen {
+			display.Show(s)
+		}
+	}
+	var a *agent.Agent
+	o.Ready = func(at net.Addr) { c.whereToLook(d, a.URL(at)) }
+	a, err = agent.New(d.Site, o)
 	if err != nil {
 		return err
 	}
@@ -100,9 +105,9 @@ func speak(ctx context.Context, d *demo.Demo, subscribed <-chan struct{}) error 
 	}
 }
 
-func (c *call) whereToLook(d *demo.Demo, at net.Addr) {
+func (c *call) whereToLook(d *demo.Demo, at string) {
 	fmt.Fprintf(c.stdout, "%s, an invented plant, with a broker of its own at\n%s\n\n", d.Site.Name, d.Broker.URL())
-	fmt.Fprintf(c.stdout, "page:    http://%s/\nmetrics: http://%s/metrics\nhealth:  http://%s/readyz\n\n%s\n\n", at, at, at, agent.Safety)
+	fmt.Fprintf(c.stdout, "page:    %s/\nmetrics: %s/metrics\nhealth:  %s/readyz\n\n%s\n\n", at, at, at, agent.Safety)
 }
 
 // display is the table of the loads: drawn over in a terminal, and from time to

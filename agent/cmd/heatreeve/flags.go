@@ -11,9 +11,6 @@ import (
 	"heatreeve/thermo/unit/near"
 )
 
-// defaultListen keeps metrics on the machine unless told otherwise.
-const defaultListen = "127.0.0.1:9617"
-
 // parse reads the options. Operands must be exactly as many as wanted; what names
 // them in the error. Help is printed on request and answered with flag.ErrHelp.
 func (c *call) parse(wanted int, what string) error {

@@ -39,10 +39,10 @@ type command struct {
 }
 
 var commands = []command{
-	{"run", "--site FILE --data DIR [--listen ADDR]", "run the agent on a plant", "", runAgent},
+	{"run", "--site FILE --data DIR [--listen ADDR] [--web-config FILE] [--openly]", "run the agent on a plant", "", runAgent},
 	{"check", "FILE [--live] [--for DURATION]", "check a site file and tell every fault in it", checkHelp, runCheck},
 	{"survey", "--broker URL [--for DURATION] [--filter TOPICS] [--draft FILE] [--format table|json] [--most N] [--username NAME] [--password-file FILE|--password-env VARIABLE] [--ca FILE] [--certificate FILE --key FILE] [--server-name NAME]", "find out what a broker carries, and draft a site file", surveyHelp, runSurvey},
-	{"demo", "[--listen ADDR] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
+	{"demo", "[--listen ADDR] [--web-config FILE] [--openly] [--data DIR] [--for DURATION] [--speed N]", "run the agent on an invented plant with a broker of its own", "", runDemo},
 	{"report", "--data DIR --from DATE [--to DATE] [--by hour|day|month] [--load NAME] [--demand LENGTH] [--shares] [--format table|csv|json] [--zone NAME] [--site FILE]", "tell the heat of every load by hour, day or month", reportHelp, runReport},
 	{"explain", "LOAD --data DIR [--at TIME] [--zone NAME] [--json]", "tell the working of one figure, line by line", explainHelp, runExplain},
 	{"learn", "--site FILE --data DIR --load NAME --against TAG[,TAG] [--from DATE] [--to DATE] [--by DURATION] [--habit none|day|week] [--straight] [--zone NAME]", "learn what a load does, and print it for the site file", learnHelp, runLearn},

@@ -1,0 +1,137 @@
+package agent
+
+import (
+	"fmt"
+	"log/slog"
+	"net"
+	"net/http"
+	"net/netip"
+	"strings"
+)
+
+// guard is who may look at what the agent shows, and what they may do.
+type guard struct {
+	file   string // web configuration; "" for none
+	terms  terms
+	openly bool
+}
+
+// newGuard says what is wrong with the options of who may look.
+func newGuard(o Options) (guard, error) {
+	g := guard{file: o.WebConfig, openly: o.Openly}
+	host, _, err := net.SplitHostPort(o.Listen)
+	if err != nil {
+		return g, fmt.Errorf("--listen %q: %s; write host:port", o.Listen, strings.TrimPrefix(err.Error(), "address "+o.Listen+": "))
+	}
+	if g.file != "" {
+		if g.terms, err = checkWebConfig(g.file); err != nil {
+			return g, err
+		}
+	}
+	return g, g.covers(host, o.Listen)
+}
+
+// covers is an error where others than this machine could look at a host, and nobody would be
+// asked.
+func (g *guard) covers(host, listen string) error {
+	if g.terms.authenticates() || g.openly || within(host) {
+		return nil
+	}
+	return fmt.Errorf("--listen %q: others than this machine could look there, and nobody would be asked who they are; "+
+		"give --web-config FILE with basic_auth_users or the certificates of clients, listen on 127.0.0.1, or let everybody look with --openly", listen)
+}
+
+// CheckLooking says what is wrong with those of the options that tell who may look, before
+// anything is started.
+func CheckLooking(o Options) error {
+	_, err := newGuard(o)
+	return err
+}
+
+// within tells whether a host is this machine's loopback.
+func within(host string) bool {
+	if strings.EqualFold(host, "localhost") {
+		return true
+	}
+	at, err := netip.ParseAddr(host)
+	return err == nil && at.IsLoopback()
+}
+
+// opened looks once more at where the agent listens in truth, now that names are resolved.
+func (g *guard) opened(at net.Addr, log *slog.Logger) error {
+	host, _, err := net.SplitHostPort(at.String())
+	if err != nil {
+		return err
+	}
+	if g.terms.password && !g.terms.tls && !within(host) {
+		log.Warn("passwords go over the network unencrypted; give the web configuration a tls_server_config", "web_config", g.file, "address", at.String())
+	}
+	return g.covers(host, at.String())
+}
+
+// url is where a reader finds what listens at an address.
+func (g *guard) url(at net.Addr) string {
+	scheme, host := "http", at.String()
+	if g.terms.tls {
+		scheme = "https"
+	}
+	if a, err := netip.ParseAddrPort(host); err == nil && a.Addr().IsUnspecified() {
+		host = fmt.Sprintf("localhost:%d", a.Port())
+	}
+	return scheme + "://" + host
+}
+
+// policy is what a page of the agent may do in a browser: load what the agent itself serves, and
+// nothing that stands within the page.
+const policy = "default-src 'none'; script-src 'self'; style-src 'self'; img-src 'self'; connect-src 'self'; form-action 'self'; base-uri 'none'; frame-ancestors 'none'"
+
+// front stands before everything that everybody may ask, passwords included.
+func (g *guard) front(h http.Handler) http.Handler {
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		for name, value := range map[string]string{
+			"Content-Security-Policy":      policy,
+			"X-Content-Type-Options":       "nosniff",
+			"Referrer-Policy":              "no-referrer",
+			"Cross-Origin-Resource-Policy": "same-origin",
+			"Cross-Origin-Opener-Policy":   "same-origin",
+		} {
+			w.Header().Set(name, value)
+		}
+		switch {
+		case !g.openly && !g.terms.authenticates() && !toLoopback(r.Host):
+			// A page from elsewhere may have its own name lead here, to be told what its reader is told
+			// (DNS rebinding); to the browser it is all one site.
+			http.Error(w, fmt.Sprintf("%q is no name of this machine's loopback: ask for http://localhost or http://127.0.0.1 with the port; "+
+				"for other names, behind a proxy too, start the agent with --web-config and a password, or with --openly", r.Host), http.StatusMisdirectedRequest)
+		case r.Method != http.MethodGet && r.Method != http.MethodHead:
+			w.Header().Set("Allow", "GET, HEAD")
+			http.Error(w, "here is nothing to be changed: allowed are GET and HEAD", http.StatusMethodNotAllowed)
+		default:
+			h.ServeHTTP(w, r)
+		}
+	})
+}
+
+// toLoopback tells whether a request is for the loopback by its own names.
+func toLoopback(hostPort string) bool {
+	host, _, err := net.SplitHostPort(hostPort)
+	if err != nil {
+		host = strings.TrimSuffix(strings.TrimPrefix(hostPort, "["), "]")
+	}
+	return within(host)
+}
+
+// behind stands behind the passwords, and sees to it that they are still asked for: the file is
+// read anew for each request.
+func (g *guard) behind(h http.Handler) http.Handler {
+	if !g.terms.authenticates() {
+		return h
+	}
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		if now, _, err := readTerms(g.file); err != nil || !now.authenticates() {
+			http.Error(w, "the web configuration no longer asks for passwords or the certificates of clients, as it did at the start; put them back, or start the agent anew", http.StatusServiceUnavailable)
+			return
+		}
+		h.ServeHTTP(w, r)
+	})
+}
