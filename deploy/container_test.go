@@ -75,7 +75,7 @@ func checkLastStage(t *testing.T, stage []instruction) {
 		t.Errorf("USER %q; want a user and a group by number, neither root", only["USER"])
 	}
 	command := append(words(t, only["ENTRYPOINT"]), words(t, only["CMD"])...)
-	want := []string{"/usr/bin/heatreeve", "run", "--site", "/etc/heatreeve/site.yaml", "--data", only["VOLUME"], "--listen", ":" + only["EXPOSE"]}
+	want := []string{"/usr/bin/heatreeve", "run", "--site", "/etc/heatreeve/site.yaml", "--data", only["VOLUME"], "--listen", ":" + only["EXPOSE"], "--web-config", "/etc/heatreeve/web.yaml"}
 	if !slices.Equal(command, want) {
 		t.Errorf("the container runs %q; want %q", command, want)
 	}
