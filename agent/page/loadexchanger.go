@@ -156,7 +156,7 @@ func (s *loadSheet) foulingCourse(x *view.Exchanger) *curve {
 	p := drawCurve("fouling resistance by its course of days; the figures are in the table above", along, y, ds[:split+1], ys[:split+1])
 	p.Ahead = curvePath(places(along, ds[split:]), heights(y, ys[split:]))
 	p.Band = bandPath(places(along, ds), clipped(heights(y, upper)), clipped(heights(y, lower)))
-	p.Below = []mark{across(0, dayLabel(first)), across(along.at(last), dayLabel(last)), across(1, dayLabel(end))}
+	p.Below = []mark{across(0, dayLabel(first, "2 Jan")), across(along.at(last), dayLabel(last, "2 Jan")), across(1, dayLabel(end, "2 Jan 2006"))}
 	p.Of, p.Unit = "fouling resistance", shown.Label(u)
 	if x.Allowance > 0 {
 		p.Limit = &level{y.down(u.Of(x.Allowance), curveHeight), "allowance"}
@@ -199,6 +199,6 @@ func clipped(ys []px) []px {
 func least(ys []float64) float64    { lo, _, _ := bounds(ys); return lo }
 func greatest(ys []float64) float64 { _, hi, _ := bounds(ys); return hi }
 
-func dayLabel(day float64) string {
-	return time.Unix(int64(math.Floor(day))*86400, 0).UTC().Format("2 Jan 2006")
+func dayLabel(day float64, layout string) string {
+	return time.Unix(int64(math.Floor(day))*86400, 0).UTC().Format(layout)
 }

@@ -112,7 +112,7 @@ func (s *loadSheet) fillHeat(p *heatPart, l *answer.LoadReport) {
 		p.Rows = append(p.Rows, row)
 	}
 	p.Total = s.heatRow(&l.Total)
-	p.Bars = drawBars("heat by "+s.address.by+" with its uncertainty and coverage; the figures are in the table below", p.Unit, all)
+	p.Bars = drawBars("heat by "+s.address.by, p.Unit, all)
 }
 
 func (s *loadSheet) heatBar(x *answer.PeriodReport) heatBar {

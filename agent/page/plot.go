@@ -39,13 +39,14 @@ type mark struct {
 	Text   string
 }
 
-// across is a mark on the axis below; near the ends its text stays within the picture.
+// across is a mark on the axis below; at the
+// ends its text stays within the picture.
 func across(x float64, text string) mark {
 	anchor := "middle"
 	switch {
-	case x < 0.06:
+	case x <= 0:
 		anchor = "start"
-	case x > 0.94:
+	case x > 0.97:
 		anchor = "end"
 	}
 	return mark{X: part(x), Anchor: anchor, Text: text}
