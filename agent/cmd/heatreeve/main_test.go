@@ -57,6 +57,11 @@ func TestExitStatusAndMessages(t *testing.T) {
 		{"run", exitWrong, "", "--site and --data must be given"},
 		{"run --sitte x", exitWrong, "", "sitte"},
 		{"run --site " + example + " --data " + dir + " --listen nonsense", exitWrong, "", `--listen "nonsense"`},
+		{"run --site " + example + " --data " + dir + " --listen :0", exitWrong, "", "heatreeve run: --listen \":0\": others than this machine could look there"},
+		{"run --site " + example + " --data " + dir + " --web-config nowhere.yaml", exitWrong, "", "nowhere.yaml"},
+		{"run --site " + example + " --data " + dir + " --web-config " + wrong, exitWrong, "", "field site not found"},
+		{"demo --listen 0.0.0.0:0", exitWrong, "", "let everybody look with --openly"},
+		{"demo --web-config " + wrong, exitWrong, "", "field laods not found"},
 		{"run --site " + wrong + " --data " + dir, exitWrong, "", "wrong.yaml:2:"},
 		{"run --site " + example + " --data " + occupied + "/x", exitFailed, "", "data folder"},
 		{"demo --speed 0", exitWrong, "", "--speed"},
@@ -65,6 +70,19 @@ func TestExitStatusAndMessages(t *testing.T) {
 		status, out, errs := invoke(strings.Fields(tt.args)...)
 		if status != tt.status || !strings.Contains(out, tt.out) || !strings.Contains(errs, tt.err) {
 			t.Errorf("heatreeve %s: status %d, printed %q, said %q; want %d, ...%q..., ...%q...", tt.args, status, out, errs, tt.status, tt.out, tt.err)
+		}
+	}
+}
+
+// An agent that is refused has begun nothing.
+func TestRefusedBeforeItBegins(t *testing.T) {
+	data := filepath.Join(t.TempDir(), "data")
+	for _, wrong := range []string{"--listen :0", "--web-config nowhere.yaml"} {
+		for _, command := range []string{"demo", "run --site ../../../configs/brackwater-creamery.yaml"} {
+			status, out, _ := invoke(strings.Fields(command + " --data " + data + " " + wrong)...)
+			if _, err := os.Stat(data); status != exitWrong || out != "" || err == nil {
+				t.Errorf("%s %s: status %d, printed %q; data folder: %v", command, wrong, status, out, err)
+			}
 		}
 	}
 }
