@@ -2,12 +2,14 @@ package page
 
 import (
 	"cmp"
+	"math"
 	"net/http"
 	"slices"
 	"strings"
 	"time"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/shown"
 	"heatreeve/agent/view"
 	"heatreeve/agent/warn"
 )
@@ -23,9 +25,11 @@ type sheetOfLoads struct {
 	Hidden   int       // bands that the filter leaves out
 	Warnings []warning // that stand
 	Returned []warning // that are over, and nobody has marked as seen
-	Hours    []string  // along the ribbons
-	From, To string    // of the ribbons
-	Faults   []string  // of broker and history
+	// Exchangers are those of which there is something to tell.
+	Exchangers []exchangerLine
+	Hours      []string // along the ribbons
+	From, To   string   // of the ribbons
+	Faults     []string // of broker and history
 }
 
 // tally counts the loads of a verdict, and may be ticked to see those alone.
@@ -53,6 +57,36 @@ func (p *Page) sheet(w http.ResponseWriter, r *http.Request) {
 		status = http.StatusBadRequest
 	}
 	p.render(w, status, "sheet.html", &x)
+}
+
+// exchangerLine is an exchanger in a line.
+type exchangerLine struct{ Name, Href, When, Text string }
+
+// exchangerLines tell of each exchanger with a window in the last hour; on the sheet of its
+// cold side there is more.
+func (p *Page) exchangerLines(f *frame, s *view.Snapshot) (all []exchangerLine) {
+	sheet := loadSheet{units: f.Units}
+	for i := range s.Exchangers {
+		x, ok := s.Told(i)
+		if !ok {
+			continue
+		}
+		line := exchangerLine{Name: x.Name, When: time.Unix(0, x.At).In(p.Site.Zone).Format("15:04"), Text: x.Why}
+		if x.Why == "" {
+			line.Text = "UA " + told(sheet.conductance(), x.Observed.Conductance, coverageFactor*x.RatioError*x.Observed.Conductance) +
+				", " + shown.Rounded(100*math.Exp(x.Ratio), 0) + " % of clean"
+			if x.Allowance > 0 && x.Course.Days > 0 {
+				line.Text += ". " + reached(x)
+			}
+		}
+		for k := range p.Site.Exchangers {
+			if e := &p.Site.Exchangers[k]; e.Name == x.Name {
+				line.Href = f.LoadLink(p.Site.Loads[e.Cold].Name) + "#exchanger"
+			}
+		}
+		all = append(all, line)
+	}
+	return all
 }
 
 // count is how many loads have a verdict now.
@@ -87,6 +121,7 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 		x.Bands = append(x.Bands, b)
 	}
 	slices.SortStableFunc(x.Bands, func(a, b band) int { return cmp.Compare(a.attention(), b.attention()) })
+	x.Exchangers = p.exchangerLines(&x.frame, s)
 	x.Warnings, x.Returned = p.warningsOf(&x.frame, s, "")
 }
 

@@ -95,7 +95,10 @@
     const text = out === 0 ? "" : out + (out === 1 ? " load left out" : " loads left out");
     if (hidden.textContent !== text) hidden.textContent = text;
   }
-  if (form) form.addEventListener("input", filter);
+  if (form) {
+    form.addEventListener("input", filter);
+    form.querySelector("button").hidden = true; // it filters as one types
+  }
 
   // The link to the agent.
   const at = document.getElementById("at");
