@@ -20,9 +20,11 @@
     };
   }
 
+  const inSight = new Set(); // bands
   // draw puts the fields of a band where they belong: duty, ±, expected, allowance.
   function draw(x) {
     const [duty, pm, expected, allowed] = x.fields;
+    x.stale = false;
     const at = (v) => (100 * Math.min(1, Math.max(0, (v - x.low) / (x.high - x.low)))).toFixed(2) + "%";
     const has = (text) => text !== "" && text !== "–";
     x.duty.textContent = duty;
@@ -50,7 +52,7 @@
       const x = bands.get(i++);
       if (!x || record === "") continue;
       record.split(" ").forEach((text, k) => { if (text !== "") x.fields[k] = text === "-" ? (k === 0 ? "–" : "") : text; });
-      draw(x);
+      if (inSight.has(x.el)) draw(x); else x.stale = true; // until it comes in sight
     }
     return +at;
   }
@@ -141,9 +143,14 @@
   open();
 
   // Ribbons are drawn for the bands in sight, and anew each minute.
-  const inSight = new Set(), drawn = new Map();
+  const drawn = new Map();
   const watch = new IntersectionObserver((entries) => {
-    for (const e of entries) e.isIntersecting ? inSight.add(e.target) : inSight.delete(e.target);
+    for (const e of entries) {
+      if (!e.isIntersecting) { inSight.delete(e.target); continue; }
+      inSight.add(e.target);
+      const x = bands.get(+e.target.dataset.i);
+      if (x.stale) draw(x);
+    }
     ask();
   }, { rootMargin: "200px" });
   for (const x of bands.values()) watch.observe(x.el);
