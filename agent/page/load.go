@@ -31,6 +31,7 @@ type loadSheet struct {
 	snapshot *view.Snapshot
 	index    int // of the load
 	load     *site.HeatLoad
+	serves   string // gives or takes heat
 	figure   loads.Figure
 	now      time.Time // event time
 	address  loadAddress
@@ -81,7 +82,7 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 // error is an [*answer.QueryError].
 func (p *Page) sheetOf(snapshot *view.Snapshot, index int, v url.Values, f *frame) (*loadSheet, error) {
 	s := &loadSheet{
-		source: p.Source, site: p.Site, zone: p.Site.Zone, snapshot: snapshot, index: index, load: &p.Site.Loads[index], units: f.Units,
+		source: p.Source, site: p.Site, zone: p.Site.Zone, snapshot: snapshot, index: index, load: &p.Site.Loads[index], serves: p.serves(index), units: f.Units,
 	}
 	var err error
 	s.address, err = loadAddressOf(s.load.Name, v, s.zone)

@@ -20,17 +20,17 @@ type coursePart struct {
 	Minute        string // address of the sheet, without the minute whose working is told
 	Zone          string
 	From, To      string
-	Duty, Heat    scale
+	Duty          scale
 	Temperature   scale
 	Flow          scale
 	Allow         float64 // fraction of what is expected
 	Expects       bool
+	Serves        string // gives or takes heat
 	Rows          []courseRow
 	Measured      string // of the time, per cent
 	Bridged       string
 	Missing       string
 	Spans, Ways   []link
-	Instant       string // at whose working the sheet is
 	PointsMinutes string
 }
 
@@ -54,7 +54,7 @@ func (s *loadSheet) course(ctx context.Context) *coursePart {
 	p := &coursePart{
 		Data: seriesPath + "?" + q.Values().Encode(), Live: s.address.live(), Seconds: int64(end.Sub(begin) / time.Second),
 		Minute: s.address.minute(time.Time{}).link(""), Zone: s.zone.String(), From: s.clock(begin), To: s.clock(end),
-		Allow: s.load.Design.Allow, Expects: s.expects(), Spans: s.address.spanLinks(), Ways: s.address.stepLinks(s.now),
+		Allow: s.load.Design.Allow, Serves: s.serves, Expects: s.expects(), Spans: s.address.spanLinks(), Ways: s.address.stepLinks(s.now),
 	}
 	x, err := s.source.Series(ctx, q)
 	if err != nil {

@@ -13,6 +13,7 @@
     return hex + Math.round(share * 255).toString(16).padStart(2, "0");
   };
   const zone = box.dataset.zone;
+  const hue = box.dataset.serves === "takes" ? "--taken" : "--given";
   const allow = Number(box.dataset.allow) || 0;
   const charts = [];
   let data = null;
@@ -45,17 +46,17 @@
           due, mean,
         ];
       },
-      lines: () => [edge(), edge(), edge("--quiet", [2, 3]), edge("--quiet", [2, 3]), edge(), edge(), line("--ink", 1.25, [6, 4]), line("--given", 2)],
+      lines: () => [edge(), edge(), edge("--quiet", [2, 3]), edge("--quiet", [2, 3]), edge(), edge(), line("--ink", 1.25, [6, 4]), line(hue, 2)],
       bands: [
-        { series: [1, 2], fill: () => faint("--given", 0.16) },
+        { series: [1, 2], fill: () => faint(hue, 0.16) },
         { series: [3, 4], fill: () => faint("--quiet", 0.12) },
-        { series: [5, 6], fill: () => faint("--given", 0.32) },
+        { series: [5, 6], fill: () => faint(hue, 0.32) },
       ],
       told: (s, v) => "duty " + s.text(v[7]) + (v[4] === null || v[7] === null ? "" : " ± " + s.text(v[4] - v[7])) + " " + s.unit + (v[6] === null ? "" : ", expected " + s.text(v[6]) + " " + s.unit),
     },
     temperature: {
       columns: (s, c) => [c.inlet_K.map(s.of), c.outlet_K.map(s.of)],
-      lines: () => [line("--given", 1.75), line("--taken", 1.75, [7, 3])],
+      lines: () => [line("--ink", 1.75), line("--quiet", 1.75, [7, 3])],
       told: (s, v) => "inlet " + s.text(v[0]) + ", outlet " + s.text(v[1]) + " " + s.unit,
     },
     flow: {
