@@ -71,7 +71,7 @@ func checkUsers(c *web.Config) error {
 		return nil
 	}
 	slices.Sort(wrong)
-	return fmt.Errorf("basic_auth_users: what stands for %s is no bcrypt hash; htpasswd -nB NAME makes one of a password", strings.Join(wrong, ", "))
+	return fmt.Errorf("basic_auth_users: what stands for %s is no bcrypt hash; htpasswd -nBC 10 NAME makes one", strings.Join(wrong, ", "))
 }
 
 // checkTLS wants certificate and key to be there, and an authority in the file of the clients'.

@@ -46,7 +46,7 @@ func snapshot() *view.Snapshot {
 // registry gathers what the agent shows. It looks for clashes, as the agent does not.
 func registry(s *view.Snapshot, now int64) prometheus.Gatherer {
 	r := prometheus.NewPedanticRegistry()
-	r.MustRegister(BuildInfo("test"), CommitSeconds())
+	r.MustRegister(BuildInfo("test"), CommitSeconds(), NewDoors())
 	c := NewCollector(func() *view.Snapshot { return s }, func() int64 { return now })
 	return prometheus.Gatherers{c.Beside(r)}
 }

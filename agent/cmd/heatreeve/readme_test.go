@@ -34,6 +34,7 @@ func TestReadmeNamesTheMetrics(t *testing.T) {
 	metrics.NewCollector(nil, nil).Describe(descs)
 	metrics.BuildInfo("").Describe(descs)
 	metrics.CommitSeconds().Describe(descs)
+	metrics.NewDoors().Describe(descs)
 	close(descs)
 	name := regexp.MustCompile(`fqName: "(\w+)"`)
 	var have []string
