@@ -2,6 +2,7 @@ package page
 
 import (
 	"context"
+	"errors"
 	"net/http"
 	"net/url"
 	"time"
@@ -46,6 +47,10 @@ type loadSheet struct {
 	Events     *eventsPart
 }
 
+// sheetWait is how long all parts of a sheet together wait for their answers: less than a
+// connection may take to be written to.
+const sheetWait = 12 * time.Second
+
 // oneLoad answers with the sheet of one load.
 func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 	x := loadPage{Name: r.PathValue("load")}
@@ -72,7 +77,9 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 		if x.Fault != "" {
 			status = http.StatusBadRequest
 		}
-		sheet.fill(r.Context())
+		ctx, cancel := context.WithTimeout(r.Context(), sheetWait)
+		defer cancel()
+		sheet.fill(ctx)
 		x.Sheet = sheet
 	}
 	p.render(w, status, "load.html", &x)
@@ -90,6 +97,14 @@ func (p *Page) sheetOf(snapshot *view.Snapshot, index int, v url.Values, f *fram
 	s.figure, _ = snapshot.Current(index, p.Now().UnixNano())
 	s.now = time.Unix(0, snapshot.At).In(s.zone)
 	return s, err
+}
+
+// why tells a reader why there is no answer.
+func why(err error) string {
+	if errors.Is(err, context.DeadlineExceeded) {
+		return "the agent is busy with other questions; load the page again in a moment"
+	}
+	return err.Error()
 }
 
 // fill asks the source for every part; what one cannot tell, it says in its place.

@@ -26,6 +26,7 @@ type coursePart struct {
 	Allow         float64 // fraction of what is expected
 	Expects       bool
 	Serves        string // gives or takes heat
+	Stream        bool   // there are an inlet, an outlet and a flow
 	Rows          []courseRow
 	Measured      string // of the time, per cent
 	Bridged       string
@@ -54,11 +55,11 @@ func (s *loadSheet) course(ctx context.Context) *coursePart {
 	p := &coursePart{
 		Data: seriesPath + "?" + q.Values().Encode(), Live: s.address.live(), Seconds: int64(end.Sub(begin) / time.Second),
 		Minute: s.address.minute(time.Time{}).link(""), Zone: s.zone.String(), From: s.clock(begin), To: s.clock(end),
-		Allow: s.load.Design.Allow, Serves: s.serves, Expects: s.expects(), Spans: s.address.spanLinks(), Ways: s.address.stepLinks(s.now),
+		Allow: s.load.Design.Allow, Serves: s.serves, Stream: s.load.Stream != nil, Expects: s.expects(), Spans: s.address.spanLinks(), Ways: s.address.stepLinks(s.now),
 	}
 	x, err := s.source.Series(ctx, q)
 	if err != nil {
-		p.Fault = err.Error()
+		p.Fault = why(err)
 		x = &answer.Series{}
 	}
 	s.scales(p, x)
@@ -76,7 +77,7 @@ func (s *loadSheet) scales(p *coursePart, x *answer.Series) {
 	mean, _ := average(x.Mean, x.Measured)
 	p.Duty = scaleOf(u.Duty, mean, s.dutySpread(x))
 	inlet, _ := average(x.Inlet, x.Measured)
-	p.Temperature = scaleOf(u.Temperature, inlet, s.temperatureSpread(inlet))
+	p.Temperature = scaleOf(u.Temperature, inlet, s.inletSpread(inlet))
 	flow, _ := average(x.Flow, x.Measured)
 	p.Flow = scaleOf(u.Flow, flow, s.flowSpread(flow))
 }
@@ -90,9 +91,17 @@ func (s *loadSheet) dutySpread(x *answer.Series) float64 {
 	return answer.CoverageFactor * s.figure.Uncertainty
 }
 
-func (s *loadSheet) temperatureSpread(T float64) float64 {
+// inletSpread and outletSpread are expanded uncertainties by the thermometers; a vessel has one.
+func (s *loadSheet) inletSpread(T float64) float64 {
 	if q := s.load.Stream; q != nil {
 		return accuracy(s.site, q.Inlet, T)
+	}
+	return accuracy(s.site, s.load.Vessel.Temperature, T)
+}
+
+func (s *loadSheet) outletSpread(T float64) float64 {
+	if q := s.load.Stream; q != nil {
+		return accuracy(s.site, q.Outlet, T)
 	}
 	return accuracy(s.site, s.load.Vessel.Temperature, T)
 }
@@ -123,8 +132,8 @@ func (s *loadSheet) rows(x *answer.Series) (all []courseRow) {
 		}
 		return answer.CoverageFactor * u
 	})
-	add("inlet", s.units.Temperature, x.Inlet, x.Inlet, x.Inlet, s.temperatureSpread)
-	add("outlet", s.units.Temperature, x.Outlet, x.Outlet, x.Outlet, s.temperatureSpread)
+	add("inlet", s.units.Temperature, x.Inlet, x.Inlet, x.Inlet, s.inletSpread)
+	add("outlet", s.units.Temperature, x.Outlet, x.Outlet, x.Outlet, s.outletSpread)
 	add("mass flow", s.units.Flow, x.Flow, x.Flow, x.Flow, s.flowSpread)
 	return all
 }

@@ -47,13 +47,13 @@ func (s *loadSheet) cp(ctx context.Context) *cpPart {
 	lo, hi, day, err := s.operating(ctx)
 	p.Day = day
 	if err != nil {
-		p.Fault = err.Error()
+		p.Fault = why(err)
 	}
 	p.Idle = err == nil && math.IsNaN(lo)
 	from, to := cpSpan(f, pressure, lo, hi)
 	ts, cps, us, err := cpCurve(f, pressure, from, to)
 	if len(ts) < 2 {
-		p.Fault = err.Error()
+		p.Fault = why(err)
 		return p
 	}
 	s.drawCp(p, ts, cps, us, lo, hi)
@@ -97,8 +97,15 @@ const poundsPerSquareInch = 6894.757
 func (s *loadSheet) fahrenheit() bool { return s.units.Temperature.Symbol == "°F" }
 
 // operating are the least and the greatest temperature of the day up to the end of the address;
-// NaN where it has none.
+// NaN where it has none. Of a vessel it is the temperature now, since no others are kept.
 func (s *loadSheet) operating(ctx context.Context) (lo, hi float64, day string, err error) {
+	if s.load.Vessel != nil {
+		T := math.NaN()
+		if s.figure.Measured() && s.figure.Content > 0 {
+			T = s.figure.Content
+		}
+		return T, T, "now", nil
+	}
 	end := s.address.end(s.now).In(s.zone)
 	begin := floor(end.Add(-time.Minute), "day")
 	q := answer.SeriesQuery{Load: s.load.Name, From: periodText(begin, "day"), Points: 288}
@@ -194,21 +201,30 @@ func inUnits(u unit.Unit, si []float64) []float64 {
 	return all
 }
 
+// endSpread is the expanded uncertainty of a temperature of which it is not known whether it is
+// that of the inlet or of the outlet.
+func (s *loadSheet) endSpread(T float64) float64 { return max(s.inletSpread(T), s.outletSpread(T)) }
+
 // cpRows are the figures at the ends of the operating span.
 func (s *loadSheet) cpRows(p *cpPart, f thermo.Fluid, pressure, lo, hi float64) {
-	for _, x := range []struct {
+	ends := []struct {
 		where string
 		T     float64
-	}{{"coldest " + p.Day, lo}, {"warmest " + p.Day, hi}} {
-		if math.IsNaN(x.T) {
-			continue
-		}
+	}{{"coldest " + p.Day, lo}, {"warmest " + p.Day, hi}}
+	switch {
+	case math.IsNaN(lo):
+		return
+	case lo == hi:
+		ends = ends[:1]
+		ends[0].where = p.Day
+	}
+	for _, x := range ends {
 		at, err := f.At(x.T, pressure)
 		if err != nil {
-			p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), Refused: err.Error()})
+			p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.endSpread(x.T)), Refused: err.Error()})
 			continue
 		}
 		relative, _ := f.Uncertainty(x.T, pressure)
-		p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.temperatureSpread(x.T)), Cp: told(s.cpUnit(), at.Cp, answer.CoverageFactor*relative*at.Cp)})
+		p.Rows = append(p.Rows, cpRow{Where: x.where, Temperature: told(s.units.Temperature, x.T, s.endSpread(x.T)), Cp: told(s.cpUnit(), at.Cp, answer.CoverageFactor*relative*at.Cp)})
 	}
 }

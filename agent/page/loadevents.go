@@ -33,7 +33,7 @@ func (s *loadSheet) events(ctx context.Context) *eventsPart {
 	p := &eventsPart{}
 	all, err := s.source.Events(ctx, q)
 	if err != nil {
-		p.Fault = err.Error()
+		p.Fault = why(err)
 		return p
 	}
 	subjects := s.subjects()

@@ -60,7 +60,7 @@ func (s *loadSheet) heat(ctx context.Context) *heatPart {
 	r, err := s.source.Report(ctx, q)
 	switch {
 	case err != nil:
-		p.Fault = err.Error()
+		p.Fault = why(err)
 		return p
 	case len(r.Loads) == 0 || len(r.Loads[0].Periods) == 0:
 		p.Fault = "Nothing is accounted for in this time."

@@ -1,6 +1,7 @@
 package page
 
 import (
+	"context"
 	"fmt"
 	"math"
 	"strconv"
@@ -126,6 +127,32 @@ func TestSpecificHeatOfABlindLoad(t *testing.T) {
 	tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "cp"), "at 7.009 bar absolute", "warmest today 130.00 ± 0.47 °C 4264 ± 10 J/(kg K)")
 	p.site.Loads[0].Design.Pressure = 0
 	tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "cp"), "at 1.013 bar absolute", "°C water: pressure 101.325 kPa is below")
+}
+
+// A vessel has one temperature, and neither inlet nor flow.
+func TestSheetOfAVessel(t *testing.T) {
+	p := fakePlantOf(t, "ostrel-maltings.yaml")
+	for i := range p.site.Loads {
+		if p.site.Loads[i].Vessel == nil {
+			continue
+		}
+		p.snapshot.Loads[i].Figure = loads.Figure{Duty: 1e3, Uncertainty: 10, Content: 333.15}
+		page := parsed(t, sheetOf(t, p, p.site.Loads[i].Name, ""))
+		tells(t, byID(t, page, "cp"), "where the load ran now", "now 60.0")
+		for _, chart := range elements(byID(t, page, "course"), "figure") {
+			if kind := attribute(chart, "data-chart"); kind != "duty" {
+				t.Errorf("a chart of %s", kind)
+			}
+		}
+		return
+	}
+	t.Error("no vessel")
+}
+
+func TestBusyAgent(t *testing.T) {
+	p := newFakePlant(t)
+	p.fault = fmt.Errorf("wait: %w", context.DeadlineExceeded)
+	tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "heat"), "Not told: the agent is busy with other questions")
 }
 
 // The resistance of 4 K/MW rises by 0.5 K/MW a day: it comes to 10 K/MW twelve days after the

@@ -72,7 +72,7 @@ func (s *loadSheet) working(ctx context.Context) *workingPart {
 	p.Ways = s.minutes(asked)
 	w, err := s.source.Explain(ctx, q)
 	if err != nil {
-		p.Fault = err.Error()
+		p.Fault = why(err)
 		return p
 	}
 	s.tell(p, w)
