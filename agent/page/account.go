@@ -2,81 +2,118 @@ package page
 
 import (
 	"bytes"
-	"cmp"
 	"context"
 	"errors"
 	"net/http"
-	"net/url"
+	"slices"
+	"strings"
 	"time"
 
 	"heatreeve/agent/answer"
 )
 
-// accountParameters are those of the account besides the units.
-var accountParameters = []string{"from", "to", "by", "load", "zone"}
-
 // accountPage is the account within its frame.
 type accountPage struct {
 	frame
-	Query  answer.Query
-	Loads  []string // of the site, for the form
-	Load   string   // the one that is asked for; "" for all
-	Bys    []string
+	Form   accountForm
+	Ways   []link
 	Made   time.Time
 	Report *accountSheet // nil where there is none
-	CSV    string        // address of the same as CSV
+	Empty  string        // why there is none yet, which is no fault
+	Again  string        // address of the same account
+	CSV    string        // and of the same as CSV
 }
 
-// accountQuery reads the address. What is left out is this month so far, by day.
-func (p *Page) accountQuery(v url.Values) (q answer.Query, err error) {
-	asked := url.Values{}
-	for _, name := range accountParameters {
-		for _, text := range v[name] {
-			if text != "" {
-				asked.Add(name, text)
-			}
-		}
+// accountForm is what may be chosen.
+type accountForm struct {
+	From, To     dateField
+	By           string
+	Bys          []string
+	Load         string   // the one that is asked for; "" for all
+	Loads        []string // that there are
+	Several      []string // those that are asked for, where there are several
+	Zone, Demand string
+}
+
+// dateField is a field for a day, or for text where it has a time of day.
+type dateField struct {
+	Name, Value string
+	Day         bool
+}
+
+// dateFieldOf shows a month as its first day.
+func dateFieldOf(name, text string) dateField {
+	if _, err := time.Parse("2006-01", text); err == nil {
+		text += "-01"
 	}
-	if q, err = answer.QueryOf(asked); err != nil {
-		return q, err
-	}
-	if q.From == "" {
-		q.From = p.Now().In(p.Site.Zone).Format("2006-01")
-	}
-	q.By = cmp.Or(q.By, "day")
-	return q, nil
+	_, err := time.Parse("2006-01-02", text)
+	return dateField{name, text, text == "" || err == nil}
 }
 
 // account answers with the account of a time, to be read or printed.
 func (p *Page) account(w http.ResponseWriter, r *http.Request) {
 	v := r.URL.Query()
-	x := accountPage{frame: p.frameOf(r, "Account", accountParameters...), Bys: bys[:], Load: v.Get("load"), Made: p.Now().In(p.Site.Zone)}
+	x := accountPage{frame: p.frameOf(r, "Account", accountParameters...), Made: p.Now().In(p.Site.Zone)}
 	x.Look = append(x.Look, "account.css")
-	for i := range p.Site.Loads {
-		x.Loads = append(x.Loads, p.Site.Loads[i].Name)
-	}
-	var err error
-	if x.Query, err = p.accountQuery(v); err == nil {
-		err = x.fill(r.Context(), p)
+	q, err := p.accountQuery(v)
+	var report *answer.Report
+	if err == nil {
+		report, err = p.accountReport(r.Context(), &q)
 	}
 	status := http.StatusOK
 	switch {
+	case errors.Is(err, answer.ErrNoRecord) && q.usual:
+		x.Empty = err.Error()
 	case err != nil:
-		status, x.Fault = statusOf(err), err.Error()
+		status, x.Fault = statusOf(err), faultText(err)
 	case x.Fault != "":
 		status = http.StatusBadRequest
+	}
+	if status == http.StatusServiceUnavailable {
+		w.Header().Set("Retry-After", "5")
+	}
+	x.Form = p.accountForm(&q)
+	x.Ways = p.accountWays(&x.frame, q.Loads)
+	if report != nil {
+		x.fill(&q, report)
 	}
 	p.render(w, status, "account.html", &x)
 }
 
-func (x *accountPage) fill(ctx context.Context, p *Page) error {
-	report, err := p.Source.Report(ctx, x.Query)
-	if err != nil {
-		return err
+func (p *Page) accountForm(q *accountAsked) accountForm {
+	f := accountForm{
+		From: dateFieldOf("from", q.From), To: dateFieldOf("to", q.To),
+		By: q.By, Bys: bys[:], Zone: q.Zone, Demand: q.Values().Get("demand"),
 	}
+	for i := range p.Site.Loads {
+		f.Loads = append(f.Loads, p.Site.Loads[i].Name)
+	}
+	switch len(q.Loads) {
+	case 0:
+	case 1:
+		f.Load = q.Loads[0]
+		if !slices.Contains(f.Loads, f.Load) { // of an earlier site file
+			f.Loads = append(f.Loads, f.Load)
+		}
+	default:
+		f.Several = q.Loads
+	}
+	return f
+}
+
+func (x *accountPage) fill(q *accountAsked, report *answer.Report) {
 	x.Report = accountOf(report, x.Units)
-	x.CSV = "/account.csv?" + x.Query.Values().Encode()
-	return nil
+	same := q.Query
+	if same.To == "" {
+		same.To = report.To.Format(addressMinute)
+	}
+	v := same.Values()
+	x.CSV = "/account.csv?" + v.Encode()
+	for name, values := range x.unitValues {
+		v[name] = values
+	}
+	// A colon needs no escape there (RFC 3986, 3.4), and reads better on paper.
+	x.Again = "/account?" + strings.ReplaceAll(v.Encode(), "%3A", ":")
 }
 
 // accountCSV answers with the same as CSV, as heatreeve report --format csv writes it.
@@ -84,18 +121,18 @@ func (p *Page) accountCSV(w http.ResponseWriter, r *http.Request) {
 	q, err := p.accountQuery(r.URL.Query())
 	var report *answer.Report
 	if err == nil {
-		report, err = p.Source.Report(r.Context(), q)
+		report, err = p.accountReport(r.Context(), &q)
 	}
 	var b bytes.Buffer
 	if err == nil {
 		err = report.CSV(&b, false)
 	}
 	if err != nil {
-		http.Error(w, err.Error(), statusOf(err))
+		http.Error(w, faultText(err), statusOf(err))
 		return
 	}
 	w.Header().Set("Content-Type", "text/csv; charset=utf-8; header=present")
-	w.Header().Set("Content-Disposition", `attachment; filename="account.csv"`)
+	w.Header().Set("Content-Disposition", `attachment; filename="account-`+report.From.Format("2006-01-02")+`.csv"`)
 	w.Header().Set("Cache-Control", "no-store")
 	_, _ = w.Write(b.Bytes()) // who asked has gone
 }
@@ -112,4 +149,12 @@ func statusOf(err error) int {
 		return http.StatusServiceUnavailable
 	}
 	return http.StatusInternalServerError
+}
+
+// faultText tells people of an error.
+func faultText(err error) string {
+	if errors.Is(err, context.DeadlineExceeded) {
+		return "the account took too long, or others had to be made first; ask for a shorter time, or again in a while"
+	}
+	return err.Error()
 }
