@@ -115,6 +115,34 @@ func TestSlowClients(t *testing.T) {
 	}
 }
 
+// An answer that takes long is not broken off by the bounds of what is asked, as long as it
+// extends its own.
+func TestLongAnswer(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		l, _ := serving(t, 2, http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+			control := http.NewResponseController(w)
+			for range 10 {
+				if err := control.SetWriteDeadline(time.Now().Add(20 * time.Second)); err != nil {
+					t.Error(err)
+				}
+				io.WriteString(w, "x")
+				control.Flush()
+				select {
+				case <-time.After(15 * time.Second):
+				case <-r.Context().Done():
+					return
+				}
+			}
+		}))
+		c := l.dial()
+		defer c.Close()
+		begun := time.Now()
+		if body, err := once(c); err != nil || len(body) != 10 || time.Since(begun) != 150*time.Second {
+			t.Errorf("%q after %v, %v", body, time.Since(begun), err)
+		}
+	})
+}
+
 // once sends a request and reads the answer.
 func once(c net.Conn) (string, error) {
 	if _, err := io.WriteString(c, plainly+"\r\n"); err != nil {
