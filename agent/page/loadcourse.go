@@ -110,7 +110,20 @@ func (s *loadSheet) flowSpread(m float64) float64 {
 	if s.load.Stream == nil {
 		return 0
 	}
-	return flowAccuracy(s.site, s.load.Stream, &s.figure, m)
+	return flowAccuracy(s.site, s.load.Stream, s.density(), m)
+}
+
+// density is that of the newest figure, or that of the design point where there is none; 0 where
+// the file has neither.
+func (s *loadSheet) density() float64 {
+	if s.figure.Density > 0 {
+		return s.figure.Density
+	}
+	at, err := s.load.Stream.Fluid.At(s.load.Design.Inlet, s.pressure())
+	if err != nil {
+		return 0
+	}
+	return at.Density
 }
 
 // rows are the quantities that the course has.

@@ -149,6 +149,16 @@ func TestSheetOfAVessel(t *testing.T) {
 	t.Error("no vessel")
 }
 
+// A flow meter that is good to 0.5 % of its reading, as a rectangular distribution, has an
+// expanded uncertainty of 0.577 % (JCGM 100:2008, 4.3.7), whether or not there is a figure now.
+func TestDigitsOfAFlow(t *testing.T) {
+	p := newFakePlant(t)
+	for _, f := range []loads.Figure{p.snapshot.Loads[0].Figure, {Fault: loads.Stale}} {
+		p.snapshot.Loads[0].Figure = f
+		tells(t, byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "course"), "mass flow 3.700 3.700 3.700 0.021 kg/s")
+	}
+}
+
 func TestBusyAgent(t *testing.T) {
 	p := newFakePlant(t)
 	p.fault = fmt.Errorf("wait: %w", context.DeadlineExceeded)
@@ -239,7 +249,7 @@ func TestScale(t *testing.T) {
 		value, expanded float64
 		want            int
 	}{{604e3, 10e3, 0}, {604e3, 4e3, 1}, {604e3, 400, 2}, {604e6, 123e3, -1}, {604e6, 0, -2}, {604e3, 0, 1}} {
-		if got := scaleOf(u.Duty, tt.value, tt.expanded); got.Decimals != tt.want || got.Factor != 1e3 || got.Unit != "kW" {
+		if got := scaleOf(u.Duty, tt.value, tt.expanded); got.Decimals != tt.want || got.Factor != 1e3 || got.Unit != "kW" || got.Spread != tt.expanded/1e3 {
 			t.Errorf("%g ± %g: %+v, want %d decimals", tt.value, tt.expanded, got, tt.want)
 		}
 	}

@@ -5,7 +5,6 @@ import (
 	"strings"
 
 	"heatreeve/agent/answer"
-	"heatreeve/agent/loads"
 	"heatreeve/agent/shown"
 	"heatreeve/agent/site"
 	"heatreeve/thermo/unit"
@@ -20,13 +19,12 @@ func accuracy(s *site.Site, from site.Source, x float64) float64 {
 	return answer.CoverageFactor * s.Tags[from.Tag].Accuracy.HalfWidth(x) / math.Sqrt(3)
 }
 
-// flowAccuracy is that of a mass flow, by the meter of the stream; the density is that of the
-// newest figure.
-func flowAccuracy(s *site.Site, q *site.Stream, f *loads.Figure, m float64) float64 {
+// flowAccuracy is that of a mass flow, by the meter of the stream; density is that of the fluid.
+func flowAccuracy(s *site.Site, q *site.Stream, density, m float64) float64 {
 	raw := m
 	switch q.FlowKind {
 	case unit.VolumeFlow:
-		raw = m / f.Density
+		raw = m / density
 	case unit.MolarFlow:
 		raw = m / q.Fluid.MolarMass()
 	}
@@ -37,9 +35,11 @@ func flowAccuracy(s *site.Site, q *site.Stream, f *loads.Figure, m float64) floa
 }
 
 // scale tells a browser how to write SI values: value = (SI − Offset)/Factor, with so many
-// decimals; below zero, tens and hundreds are rounded.
+// decimals; below zero, tens and hundreds are rounded. Spread is the expanded uncertainty in
+// the unit, beside which a chart is not to enlarge what it shows.
 type scale struct {
 	Factor, Offset float64
+	Spread         float64
 	Decimals       int
 	Unit           string
 }
@@ -51,7 +51,7 @@ func scaleOf(u unit.Unit, value, expanded float64) scale {
 	if spread != "" {
 		decimals = decimalsIn(spread, 2)
 	}
-	return scale{u.Factor, u.Offset, decimals, shown.Label(u)}
+	return scale{u.Factor, u.Offset, expanded / u.Factor, decimals, shown.Label(u)}
 }
 
 // decimalsIn is how many decimals a figure of so many digits has; below zero, tens and hundreds

@@ -25,6 +25,7 @@
     const step = Math.pow(10, -decimals);
     return {
       unit: d.unit,
+      spread: Number(d.spread) || 0,
       of: (si) => (si === null || si === undefined ? null : (si - offset) / factor),
       span: (si) => (si === null || si === undefined ? null : si / factor),
       text: (x) => (x === null || x === undefined ? "–" : decimals >= 0 ? x.toFixed(decimals) : String(Math.round(x / step) * step)),
@@ -83,12 +84,19 @@
   });
   const wide = () => Math.max(240, box.clientWidth);
 
-  function options(kind, height) {
+  // upright is the range of an axis: so wide at least that what is within the uncertainty looks so.
+  function upright(low, high, spread) {
+    if (low === null || high === null) return [0, 1];
+    const middle = (low + high) / 2, half = Math.max((high - low) * 0.55, 3 * spread, Math.abs(middle) * 1e-6, 1e-9);
+    return [middle - half, middle + half];
+  }
+
+  function options(kind, height, scale) {
     const axis = { stroke: () => css("--ink"), grid: { stroke: () => css("--line"), width: 1 }, ticks: { stroke: () => css("--line"), width: 1 }, font: "12px system-ui, sans-serif" };
     return {
       width: wide(), height, tzDate: (s) => uPlot.tzDate(new Date(s * 1e3), zone), legend: { show: false },
       cursor: { sync: { key: "course" }, drag: { x: false, y: false }, y: false, points: { size: 7 } },
-      scales: { x: { time: true, range: () => [Date.parse(data.from) / 1e3, Date.parse(data.to) / 1e3] } },
+      scales: { x: { time: true, range: () => [Date.parse(data.from) / 1e3, Date.parse(data.to) / 1e3] }, y: { range: (u, low, high) => upright(low, high, scale.spread) } },
       axes: [{ ...axis, values: marks }, { ...axis, size: 56, values: (u, all) => all.map((x) => String(Number(x.toPrecision(8)))) }],
       series: [{}, ...kinds[kind].lines()],
       bands: kinds[kind].bands,
@@ -96,17 +104,18 @@
     };
   }
 
-  // marks writes times on the 24-hour clock; the day stands where it changes.
+  // marks writes times on the 24-hour clock; the day, or the year, stands below where it changes.
+  const names = ["Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec"];
   function marks(u, all, place, room, step) {
     let before = "";
     return all.map((s) => {
       const t = uPlot.tzDate(new Date(s * 1e3), zone);
-      const day = t.getDate() + " " + ["Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec"][t.getMonth()];
+      const month = names[t.getMonth()], year = String(t.getFullYear()), day = t.getDate() + " " + month;
       const hour = String(t.getHours()).padStart(2, "0") + ":" + String(t.getMinutes()).padStart(2, "0");
-      const head = step >= 27 * 86400 ? day.split(" ")[1] + " " + t.getFullYear() : day;
-      const text = step >= 86400 ? head : head === before ? hour : hour + "\n" + head;
-      before = head;
-      return text;
+      const [text, below] = step >= 300 * 86400 ? [year, ""] : step >= 27 * 86400 ? [month, year] : step >= 86400 ? [day, year] : [hour, day];
+      const known = below === before;
+      before = below;
+      return known ? text : text + "\n" + below;
     });
   }
 
@@ -155,7 +164,7 @@
         known.plot.setData(columns);
         continue;
       }
-      const plot = new uPlot(options(kind, kind === "duty" ? 260 : 170), columns, figure);
+      const plot = new uPlot(options(kind, kind === "duty" ? 260 : 170, scale), columns, figure);
       plot.over.addEventListener("click", () => {
         if (plot.cursor.idx !== null && plot.cursor.idx !== undefined) location.assign(minute(plot.cursor.idx));
       });
