@@ -17,11 +17,11 @@ type desk struct {
 	*health
 	reports  *reports
 	explains *explains
-	turn     turn // holds one while a series or events are in the making
+	turn     chan struct{} // holds one while a series or events are in the making
 }
 
 func newDesk(h *health, r *reports, x *explains) *desk {
-	return &desk{health: h, reports: r, explains: x, turn: make(turn, 1)}
+	return &desk{health: h, reports: r, explains: x, turn: make(chan struct{}, 1)}
 }
 
 // Snapshot implements [page.Source].
@@ -32,12 +32,12 @@ func (d *desk) Now() time.Time { return d.now() }
 
 // Report implements [page.Source].
 func (d *desk) Report(ctx context.Context, q answer.Query) (*answer.Report, error) {
-	return inTurn(ctx, d.reports.turn, func(ctx context.Context) (*answer.Report, error) { return d.reports.history.report(ctx, q) })
+	return inTurn(ctx, d.reports.turn.one, func(ctx context.Context) (*answer.Report, error) { return d.reports.history.report(ctx, q) })
 }
 
 // Explain implements [page.Source].
 func (d *desk) Explain(ctx context.Context, q answer.Explanation) (*working.Working, error) {
-	return inTurn(ctx, d.explains.turn, func(ctx context.Context) (*working.Working, error) { return d.explains.explain(ctx, q) })
+	return inTurn(ctx, d.explains.turn.one, func(ctx context.Context) (*working.Working, error) { return d.explains.explain(ctx, q) })
 }
 
 // Events implements [page.Source].

@@ -14,7 +14,7 @@ import (
 )
 
 // eventsPath is where what happened is told.
-const eventsPath = "/events"
+const eventsPath = apiPath + "events"
 
 // eventKinds are those that there are.
 var eventKinds = []string{
@@ -88,7 +88,7 @@ type happenings struct {
 }
 
 func newEvents(r *reports) *happenings {
-	return &happenings{history: r.history, turn: make(turn, 1)}
+	return &happenings{history: r.history, turn: newTurn(atATime, "other events are being told; try again in a while")}
 }
 
 func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -97,16 +97,19 @@ func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	if !s.turn.taken(w, "other events are being told; try again in a while") {
+	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
+	defer cancel()
+	allow(w, reportTime+reportStall)
+	if !s.turn.taken(ctx, w) {
 		return
 	}
 	defer s.turn.free()
-	all, err := s.history.events(r.Context(), q)
+	all, err := s.history.events(ctx, q)
 	if err != nil {
 		refuse(w, err)
 		return
 	}
-	writeJSON(w, all)
+	hand(w, r, all, reportStall)
 }
 
 // Happened tells the events of a history: a data folder, or a copy of its file. Where an agent

@@ -2,7 +2,6 @@ package agent
 
 import (
 	"context"
-	"encoding/json"
 	"fmt"
 	"heatreeve/agent/answer"
 	"net/http"
@@ -14,7 +13,7 @@ import (
 )
 
 const (
-	explainPath = "/explain"
+	explainPath = apiPath + "explain"
 	// explainTime bounds how long one explanation may take, and beatTime how long the beat
 	// may take to answer.
 	explainTime = time.Minute
@@ -39,7 +38,7 @@ type explains struct {
 }
 
 func newExplains(r *reports, s *site.Site, questions chan<- question) *explains {
-	return &explains{history: r.history, site: s, questions: questions, turn: make(turn, 1)}
+	return &explains{history: r.history, site: s, questions: questions, turn: newTurn(atATime, "other explanations are in the making; try again in a while")}
 }
 
 func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -48,22 +47,19 @@ func (s *explains) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	if !s.turn.taken(w, "another explanation is in the making; try again in a while") {
+	ctx, cancel := context.WithTimeout(r.Context(), explainTime)
+	defer cancel()
+	allow(w, explainTime+reportStall)
+	if !s.turn.taken(ctx, w) {
 		return
 	}
 	defer s.turn.free()
-	_ = http.NewResponseController(w).SetWriteDeadline(time.Now().Add(explainTime + reportStall)) // where it cannot be set, there is no bound
-	ctx, cancel := context.WithTimeout(r.Context(), explainTime)
-	defer cancel()
 	x, err := s.explain(ctx, q)
 	if err != nil {
 		refuse(w, err)
 		return
 	}
-	w.Header().Set("Content-Type", "application/json")
-	e := json.NewEncoder(w)
-	e.SetEscapeHTML(false)
-	_ = e.Encode(x) // who asked has gone
+	hand(w, r, x, reportStall)
 }
 
 func (s *explains) explain(ctx context.Context, q answer.Explanation) (*working.Working, error) {
@@ -92,13 +88,13 @@ func (s *explains) newest(ctx context.Context, load int) (x working.Subject, err
 	select {
 	case s.questions <- question{load, answer}:
 	case <-ctx.Done():
-		return x, fmt.Errorf("the agent does not come to answer within %v; it is busy, or stops", beatTime)
+		return x, fmt.Errorf("%w does not come to answer within %v; it is busy, or stops", errBusy, beatTime)
 	}
 	select {
 	case x = <-answer:
 		return x, nil
 	case <-ctx.Done():
-		return x, ctx.Err()
+		return x, fmt.Errorf("%w has not answered within %v; it is busy, or stops", errBusy, beatTime)
 	}
 }
 

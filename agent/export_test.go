@@ -289,7 +289,7 @@ func TestExportRefusals(t *testing.T) {
 	} {
 		w := httptest.NewRecorder()
 		s.ServeHTTP(w, httptest.NewRequest("GET", exportPath+"?"+tt.values().Encode(), nil))
-		if w.Code != tt.status || !strings.Contains(w.Body.String(), tt.says) {
+		if w.Code != tt.status || !strings.Contains(said(w), tt.says) {
 			t.Errorf("%+v: status %d, %s; want %d, ...%q...", tt.Selection, w.Code, w.Body, tt.status, tt.says)
 		}
 		var b bytes.Buffer
@@ -302,7 +302,7 @@ func TestExportRefusals(t *testing.T) {
 	for query, want := range map[string]string{"tag=TT-1&colour=red": "colour is no parameter", "tag=TT-1&tag=FT-1": "tag is given 2 times"} {
 		w := httptest.NewRecorder()
 		s.ServeHTTP(w, httptest.NewRequest("GET", exportPath+"?"+query, nil))
-		if w.Code != 400 || !strings.Contains(w.Body.String(), want) {
+		if w.Code != 400 || !strings.Contains(said(w), want) {
 			t.Errorf("%s: status %d, %s", query, w.Code, w.Body)
 		}
 	}

@@ -2,8 +2,6 @@ package agent
 
 import (
 	"context"
-	"errors"
-	"heatreeve/agent/answer"
 	"net/http"
 	"slices"
 	"strconv"
@@ -11,7 +9,7 @@ import (
 )
 
 const (
-	exportPath = "/export"
+	exportPath = apiPath + "export"
 	// untilHeader tells to where an export can go.
 	untilHeader = "Heatreeve-Until"
 	// noteHeader tells what is to know about all of an export, if anything.
@@ -33,7 +31,7 @@ type exports struct {
 }
 
 func newExports(r *reports) *exports {
-	return &exports{history: r.history, turn: make(turn, 1)}
+	return &exports{history: r.history, turn: newTurn(1, "another export is under way; try again when it has ended")}
 }
 
 func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -47,7 +45,7 @@ func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	if !s.turn.taken(w, "another export is under way; try again when it has ended") {
+	if !s.turn.taken(r.Context(), w) {
 		return
 	}
 	defer s.turn.free()
@@ -64,6 +62,7 @@ func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
 		kind = "application/jsonl"
 	}
 	w.Header().Set("Content-Type", kind)
+	w.Header().Set("Cache-Control", "no-store")
 	w.Header().Set(untilHeader, x.until().Format(time.RFC3339Nano))
 	if x.note != "" {
 		w.Header().Set(noteHeader, x.note)
@@ -114,17 +113,4 @@ func (s *steady) extend() {
 		until = s.end
 	}
 	_ = s.control.SetWriteDeadline(until)
-}
-
-// refuse says why there is no answer.
-func refuse(w http.ResponseWriter, err error) {
-	status := http.StatusInternalServerError
-	var wrong *answer.QueryError
-	switch {
-	case errors.As(err, &wrong):
-		status = http.StatusBadRequest
-	case errors.Is(err, answer.ErrNoRecord):
-		status = http.StatusNotFound
-	}
-	http.Error(w, err.Error(), status)
 }

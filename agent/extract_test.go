@@ -85,7 +85,7 @@ func TestExtractIsCancelled(t *testing.T) {
 	err = Extract(ctx, dir, Selection{Tag: "TT-1"}, io.Discard, func(Progress) {
 		w := httptest.NewRecorder()
 		s.ServeHTTP(w, httptest.NewRequest("GET", exportPath+"?tag=FT-1", nil))
-		if w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "another export is under way") {
+		if w.Code != http.StatusServiceUnavailable || !strings.Contains(said(w), "another export is under way") {
 			t.Errorf("a second export: status %d, %.80s", w.Code, w.Body)
 		}
 		cancel()
@@ -94,7 +94,7 @@ func TestExtractIsCancelled(t *testing.T) {
 		t.Errorf("cancelled: %v", err)
 	}
 	select {
-	case s.turn <- struct{}{}: // it has ended there too
+	case s.turn.one <- struct{}{}: // it has ended there too
 	case <-time.After(10 * time.Second):
 		t.Error("the agent is still at the export that nobody waits for")
 	}

@@ -245,8 +245,8 @@ func TestReportThatTakesLonger(t *testing.T) {
 	t.Parallel()
 	db := keep(t, filepath.Join(t.TempDir(), HistoryFile), store.Options{}, 60, ramp, "ramp")
 	s := newReports(historyIn(t, db, "UTC"))
-	s.turn <- struct{}{} // another report is in the making
-	time.AfterFunc(headerTime+time.Second, func() { <-s.turn })
+	s.turn.one <- struct{}{} // another report is in the making
+	time.AfterFunc(headerTime+time.Second, func() { <-s.turn.one })
 	server, at := own(s)
 	defer server.Close()
 	r, err := ask(t.Context(), at, answer.Query{From: "2026-10-23"})

@@ -15,6 +15,7 @@ import (
 	"strings"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/warn"
 	"heatreeve/store"
 )
@@ -44,7 +45,7 @@ type marks struct {
 func (s *marks) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	r.Body = http.MaxBytesReader(w, r.Body, markBytes)
 	if err := r.ParseForm(); err != nil {
-		http.Error(w, "mark: "+err.Error(), http.StatusBadRequest)
+		answer.Refuse(w, http.StatusBadRequest, "mark: "+err.Error())
 		return
 	}
 	o, err := orderOf(r.PostForm)

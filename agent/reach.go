@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"context"
 	"encoding/gob"
+	"encoding/json"
 	"errors"
 	"fmt"
 	"io"
@@ -110,6 +111,10 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 // refusal is an agent's answer that is not what was asked for.
 func refusal(status int, body []byte) error {
 	text := string(bytes.TrimSpace(body))
+	var p answer.Problem
+	if json.Unmarshal(body, &p) == nil && p.Detail != "" {
+		text = p.Detail
+	}
 	if status == http.StatusBadRequest {
 		return &answer.QueryError{Text: text}
 	}

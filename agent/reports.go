@@ -2,21 +2,17 @@ package agent
 
 import (
 	"context"
-	"encoding/json"
 	"heatreeve/agent/answer"
 	"net/http"
 	"time"
 )
 
 const (
-	reportPath = "/report"
+	reportPath = apiPath + "report"
 	// reportTime bounds how long one report may take.
 	reportTime = 2 * time.Minute
 	// reportStall is how long who asked for a report may take nothing of it.
 	reportStall = 10 * time.Second
-	// reportsAtATime bounds how many queries there are: one in the making or on its way,
-	// and those that wait for their turn.
-	reportsAtATime = 4
 )
 
 // reports answers queries while the agent runs, one at a time. It only reads, in
@@ -24,13 +20,12 @@ const (
 // it has been taken, so that there is never more than one in memory.
 type reports struct {
 	history history
-	turn    chan struct{} // holds one while a report is in the making or on its way
-	queue   chan struct{} // holds one a query
+	turn    turn // holds one while a report is in the making or on its way
 	stall   time.Duration
 }
 
 func newReports(h history) *reports {
-	return &reports{history: h, turn: make(chan struct{}, 1), queue: make(chan struct{}, reportsAtATime), stall: reportStall}
+	return &reports{history: h, turn: newTurn(atATime, "other reports are in the making; try again in a while"), stall: reportStall}
 }
 
 func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
@@ -39,33 +34,17 @@ func (s *reports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
-	select {
-	case s.queue <- struct{}{}:
-		defer func() { <-s.queue }()
-	default:
-		http.Error(w, "other reports are in the making; try again in a while", http.StatusServiceUnavailable)
-		return
-	}
 	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
 	defer cancel()
-	// Longer than other answers may take; where it cannot be set, there is no bound.
-	control := http.NewResponseController(w)
-	_ = control.SetWriteDeadline(time.Now().Add(reportTime + s.stall))
-	select {
-	case s.turn <- struct{}{}:
-		defer func() { <-s.turn }()
-	case <-ctx.Done():
-		http.Error(w, "other reports took all the time; try again in a while", http.StatusServiceUnavailable)
+	allow(w, reportTime+s.stall)
+	if !s.turn.taken(ctx, w) {
 		return
 	}
+	defer s.turn.free()
 	report, err := s.history.report(ctx, q)
 	if err != nil {
 		refuse(w, err)
 		return
 	}
-	w.Header().Set("Content-Type", "application/json")
-	e := json.NewEncoder(&steady{ResponseWriter: w, control: control, stall: s.stall, end: time.Now().Add(reportTime)})
-	e.SetEscapeHTML(false)
-	_ = e.Encode(report) // who asked has gone
-	_ = control.Flush()  // what is kept back is to be taken within the turn too
+	hand(w, r, report, s.stall)
 }

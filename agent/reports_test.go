@@ -52,7 +52,7 @@ func TestReportPage(t *testing.T) {
 	} {
 		w := httptest.NewRecorder()
 		s.ServeHTTP(w, httptest.NewRequest(http.MethodGet, reportPath+"?"+tt.query, nil))
-		if w.Code != tt.status || !strings.Contains(w.Body.String(), tt.text) {
+		if w.Code != tt.status || !strings.Contains(said(w), tt.text) {
 			t.Errorf("%s: %d %q, want %d ...%q...", tt.query, w.Code, w.Body, tt.status, tt.text)
 		}
 	}
@@ -70,7 +70,7 @@ func TestReportBeforeTimeHasBegun(t *testing.T) {
 	}
 	w := httptest.NewRecorder()
 	newReports(historyIn(t, db, "Europe/Dublin")).ServeHTTP(w, httptest.NewRequest(http.MethodGet, reportPath+"?from=2026-10-24", nil))
-	if w.Code != http.StatusNotFound || !strings.Contains(w.Body.String(), "its time has not begun") || strings.Contains(w.Body.String(), "1970") {
+	if w.Code != http.StatusNotFound || !strings.Contains(said(w), "its time has not begun") || strings.Contains(said(w), "1970") {
 		t.Errorf("%d %q", w.Code, w.Body)
 	}
 }
@@ -110,14 +110,14 @@ func TestReportIsBounded(t *testing.T) {
 		t.Errorf("a report that nobody waits for: %v", err)
 	}
 	s := newReports(h)
-	s.turn <- struct{}{} // another one is in the making
-	if w := asked(ctx, s); w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "took all the time") {
+	s.turn.one <- struct{}{} // another one is in the making
+	if w := asked(ctx, s); w.Code != http.StatusServiceUnavailable || !strings.Contains(said(w), "took all the time") {
 		t.Errorf("a report that waits for its turn in vain: %d %s", w.Code, w.Body)
 	}
-	for range reportsAtATime {
-		s.queue <- struct{}{}
+	for range atATime {
+		s.turn.all <- struct{}{}
 	}
-	if w := asked(t.Context(), s); w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "in the making") {
+	if w := asked(t.Context(), s); w.Code != http.StatusServiceUnavailable || !strings.Contains(said(w), "in the making") {
 		t.Errorf("a report too many: %d %s", w.Code, w.Body)
 	}
 }

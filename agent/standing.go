@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"context"
 	"encoding/gob"
-	"encoding/json"
 	"errors"
 	"net/http"
 	"net/url"
@@ -16,7 +15,7 @@ import (
 
 const (
 	// warningsPath is where the warnings are that stand.
-	warningsPath = "/warnings"
+	warningsPath = apiPath + "warnings"
 	// warningsTime bounds how long one answer may take.
 	warningsTime = 10 * time.Second
 )
@@ -44,17 +43,10 @@ func newBoards(r *reports, h *health) *boards { return &boards{h, r.history.zone
 func (s *boards) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	v := s.health.latest.Load()
 	if v == nil {
-		http.Error(w, "no beat yet", http.StatusServiceUnavailable)
+		answer.Refuse(w, http.StatusServiceUnavailable, noBeat)
 		return
 	}
-	writeJSON(w, standingOf(v.Site, v.At, &v.Warnings, s.zone))
-}
-
-func writeJSON(w http.ResponseWriter, x any) {
-	w.Header().Set("Content-Type", "application/json")
-	e := json.NewEncoder(w)
-	e.SetEscapeHTML(false)
-	_ = e.Encode(x) // who asked has gone
+	hand(w, r, standingOf(v.Site, v.At, &v.Warnings, s.zone), reportStall)
 }
 
 // Warnings tells what stands by a history: a data folder, or a copy of its file. Where an

@@ -26,11 +26,7 @@ func handler(page, metrics http.Handler, health *health, reports *reports, expla
 	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", faultless(health.alive))
 	mux.HandleFunc("GET /readyz", faultless(health.ready))
-	mux.Handle("GET "+reportPath, reports)
-	mux.Handle("GET "+explainPath, explains)
-	mux.Handle("GET "+exportPath, newExports(reports))
-	mux.Handle("GET "+warningsPath, newBoards(reports, health))
-	mux.Handle("GET "+eventsPath, newEvents(reports))
+	newAPI(page, reports, explains, health).mount(mux)
 	return mux
 }
 

@@ -5,6 +5,7 @@ import (
 	"crypto/sha256"
 	"encoding/base64"
 	"net/http"
+	"strconv"
 )
 
 // Answer writes a whole answer of a kind, as a media type names it: with a strong validator, made of
@@ -18,6 +19,7 @@ func Answer(w http.ResponseWriter, r *http.Request, kind string, body []byte) {
 		h.Set("Cache-Control", "no-cache")
 	}
 	h.Set("ETag", tagOf(body))
+	h.Set("Content-Length", strconv.Itoa(len(body)))
 	c := &conditional{ResponseWriter: w, have: r.Header.Values("If-None-Match")}
 	_, _ = c.Write(body) // who asked has gone
 }
