@@ -53,6 +53,19 @@ func TestRules(t *testing.T) {
 	}
 }
 
+// The units that people are shown figures in are no rules of a load.
+func TestUnitsToShowAreNoRules(t *testing.T) {
+	plain, other := plantOf(parsed(t, benchSite)), plantOf(parsed(t, "shown_in: {duty: Btu/h, heat: GJ, temperature: °F, flow: lb/h}\n"+benchSite))
+	for i := range plain.Loads {
+		if rulesOfLoad(&plain, i) != rulesOfLoad(&other, i) {
+			t.Errorf("load %s goes by other rules", plain.Loads[i].Name)
+		}
+	}
+	if len(plain.Loads) == 0 {
+		t.Error("no load was compared")
+	}
+}
+
 // The rules of a load are its own: where its tags stand, and what other loads do, is none
 // of them.
 func TestRulesOfLoad(t *testing.T) {

@@ -38,7 +38,7 @@ const accountMinute = "Mon 2 Jan 2006 15:04 -07:00"
 func accountOf(r *answer.Report, u shown.Units) *accountSheet {
 	x := &accountSheet{Report: r, Heat: shown.Label(u.Heat), Duty: shown.Label(u.Duty), Peak: "Highest"}
 	if r.Demand != 0 {
-		x.Peak = "Peak of " + brief(r.Minutes(), 1) + " min"
+		x.Peak = "Peak of " + brief(r.Minutes(), 1) + "\u00a0min"
 	}
 	for i := range r.Loads {
 		l := &r.Loads[i]

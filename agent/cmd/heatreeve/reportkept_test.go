@@ -32,6 +32,12 @@ const keptMinutes = 80 * 60
 // missing in the dryer's.
 func keep(t *testing.T) string {
 	t.Helper()
+	return keepSince(t, keptFrom)
+}
+
+// keepSince is keep with another beginning.
+func keepSince(t *testing.T, from time.Time) string {
+	t.Helper()
 	dir := t.TempDir()
 	s, err := site.Parse(configs.DemoName, configs.Demo)
 	if err != nil {
@@ -64,12 +70,12 @@ func keep(t *testing.T) string {
 		t.Fatal(err)
 	}
 	b := store.Batch{Beats: []store.Beat{{
-		Through:  keptFrom.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano(),
-		Readings: append(keptReadings(tags["TT-201"]), keptStream(tags)...),
+		Through:  from.Add(keptMinutes*time.Minute + 30*time.Second).UnixNano(),
+		Readings: append(keptReadings(tags["TT-201"], from), keptStream(tags, from)...),
 	}}}
 	for k := range keptMinutes {
 		for i := range s.Loads {
-			if m, ok := keptMinute(t, plant, &s.Loads[i], k); ok {
+			if m, ok := keptMinute(t, plant, &s.Loads[i], from, k); ok {
 				m.Load = ids[s.Loads[i].Name]
 				b.Minutes = append(b.Minutes, m)
 			}
@@ -82,9 +88,9 @@ func keep(t *testing.T) string {
 }
 
 // keptReadings are those of a temperature that swings by 0.3 K about 130 °C, four a minute.
-func keptReadings(tag uint32) (all []store.Reading) {
+func keptReadings(tag uint32, from time.Time) (all []store.Reading) {
 	for k := range 4 * keptMinutes {
-		at := keptFrom.Add(time.Duration(k)*15*time.Second + 250*time.Millisecond)
+		at := from.Add(time.Duration(k)*15*time.Second + 250*time.Millisecond)
 		all = append(all, store.Reading{Tag: tag, At: at.UnixNano(), Value: 403.15 + math.Round(30*math.Sin(float64(k)/7))/100, Stamped: k%500 != 499})
 	}
 	return all
@@ -92,9 +98,9 @@ func keptReadings(tag uint32) (all []store.Reading) {
 
 // keptStream are the readings of the rest of the hot water in the last 70 minutes, four a
 // minute.
-func keptStream(tags map[string]uint32) (all []store.Reading) {
+func keptStream(tags map[string]uint32, from time.Time) (all []store.Reading) {
 	for k := range 4 * 70 {
-		at := keptFrom.Add((keptMinutes-70)*time.Minute + time.Duration(k)*15*time.Second)
+		at := from.Add((keptMinutes-70)*time.Minute + time.Duration(k)*15*time.Second)
 		sway := func(period float64) float64 { return math.Round(100*math.Sin(float64(k)/period)) / 100 }
 		for i, x := range []struct {
 			tag   string
@@ -110,10 +116,10 @@ func keptStream(tags map[string]uint32) (all []store.Reading) {
 
 // keptMinute is what a load moves in minute k, to the watt, at 0.8 % of standard
 // uncertainty, and between which temperatures where it is the hot water.
-func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, k int) (m store.Minute, ok bool) {
+func keptMinute(t *testing.T, plant *demo.Plant, l *site.HeatLoad, from time.Time, k int) (m store.Minute, ok bool) {
 	t.Helper()
-	at := keptFrom.Add(time.Duration(k) * time.Minute)
-	duty, err := plant.Duty(l.Name, (at.Sub(keptFrom)+(24*time.Hour-5*time.Hour-30*time.Minute))%(24*time.Hour))
+	at := from.Add(time.Duration(k) * time.Minute)
+	duty, err := plant.Duty(l.Name, (at.Sub(from)+(24*time.Hour-5*time.Hour-30*time.Minute))%(24*time.Hour))
 	if err != nil {
 		t.Fatal(err)
 	}
