@@ -225,6 +225,28 @@ func TestCourseTellsFouling(t *testing.T) {
 	}
 }
 
+// A conductance that is 20 % below clean and has been so in each of the days before is told
+// against clean: nothing has shifted against these days, and no thousandth of a kelvin is to blame.
+func TestFouledAsTheDaysBefore(t *testing.T) {
+	s := states[0]
+	e := gathered(settled(s.hot, s.cold, s.T1, s.t1, 0.8*clean(s.hot, s.cold)), nil)
+	e.Exchanger.Signalled, e.Exchanger.Since = true, 11
+	for day := range 12 {
+		e.Exchanger.Days = append(e.Exchanger.Days, Day{
+			Day: int64(day), Conductance: Estimate{true, e.Exchanger.Conductance.Value + 1e-5*float64(day%3), 1e-5}, Closure: Estimate{true, float64(day % 3), 1},
+		})
+	}
+	causes := Rank(e)
+	if len(causes) == 0 || !slices.ContainsFunc(causes, func(c Cause) bool { return c.Kind == Fouling && c.Weight > 0.5 }) {
+		t.Errorf("%+v", causes)
+	}
+	for _, c := range causes {
+		if i := slices.IndexFunc(c.Figures, func(f Figure) bool { return f.Name == "size of the fault" }); i >= 0 && c.Figures[i].Unit == "K" && math.Abs(c.Figures[i].Value) < 0.01 {
+			t.Errorf("%s", c.Says)
+		}
+	}
+}
+
 // Evidence of the two sides put together tells the same as that of six readings, and has the
 // tests and marks of both.
 func TestBeside(t *testing.T) {

@@ -73,7 +73,7 @@ func (s *isolation) significance() float64 {
 	if len(s.statistics) == 0 {
 		return 0
 	}
-	p := distuv.ChiSquared{K: float64(len(s.statistics))}.CDF(s.total)
+	p := s.chance()
 	switch {
 	case s.signalled:
 		return max(p, byTest)
@@ -81,6 +81,14 @@ func (s *isolation) significance() float64 {
 		return p
 	}
 	return 0
+}
+
+// chance is the probability with which statistics of no fault lie nearer to nought; 0 of none.
+func (s *isolation) chance() float64 {
+	if len(s.statistics) == 0 {
+		return 0
+	}
+	return distuv.ChiSquared{K: float64(len(s.statistics))}.CDF(s.total)
 }
 
 // isolate weighs the statistics with the covariance that the faults' own uncertainties

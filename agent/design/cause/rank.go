@@ -15,6 +15,13 @@ const least = 0.05
 func Rank(e Evidence) []Cause {
 	faults := e.faults()
 	iso := isolate(e.statistics(), faults)
+	if e.Exchanger.Signalled && iso.chance() < byTest { // the days before may have had the fault as well
+		clean := e
+		clean.Exchanger.Days = nil
+		if beside := isolate(clean.statistics(), faults); beside.chance() >= byTest {
+			e, iso = clean, beside
+		}
+	}
 	iso.signalled = e.Exchanger.Signalled
 	causes, misread := e.faulty(iso, faults)
 	causes = append(causes, e.away(iso, 1-misread)...)
