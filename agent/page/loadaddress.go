@@ -11,48 +11,6 @@ import (
 	"heatreeve/agent/answer"
 )
 
-// span is a length of time that the sheet of a load shows.
-type span struct {
-	Name, Words string
-	back        func(time.Time) time.Time // from its end to its beginning
-}
-
-func hours(n int) func(time.Time) time.Time {
-	return func(t time.Time) time.Time { return t.Add(-time.Duration(n) * time.Hour) }
-}
-
-func days(n int) func(time.Time) time.Time {
-	return func(t time.Time) time.Time { return t.AddDate(0, 0, -n) }
-}
-
-func months(n int) func(time.Time) time.Time {
-	return func(t time.Time) time.Time { return t.AddDate(0, -n, 0) }
-}
-
-// spans are those that may be chosen; the shortest comes first.
-var spans = [...]span{
-	{"1h", "1 hour", hours(1)},
-	{"6h", "6 hours", hours(6)},
-	{"1d", "1 day", days(1)},
-	{"1w", "1 week", days(7)},
-	{"1mo", "1 month", months(1)},
-	{"6mo", "6 months", months(6)},
-	{"1y", "1 year", months(12)},
-	{"2y", "2 years", months(24)},
-}
-
-// usualSpan is the index of the span where an address has none.
-const usualSpan = 1
-
-// bys are the periods by which heat may be shown.
-var bys = [...]string{"hour", "day", "month"}
-
-// usualBy is the one where an address has none.
-const usualBy = "hour"
-
-// addressMinute writes an instant into an address, so that it means the same everywhere.
-const addressMinute = "2006-01-02T15:04:05Z07:00"
-
 // loadAddress is what the address of a load's sheet says: a place in time, and units.
 type loadAddress struct {
 	load  string
@@ -163,42 +121,6 @@ func (a loadAddress) end(now time.Time) time.Time {
 // begin is where it begins.
 func (a loadAddress) begin(now time.Time) time.Time {
 	return a.span.back(a.end(now)).Truncate(time.Minute)
-}
-
-// link is one of several ways on.
-type link struct {
-	Text, To string
-	Current  bool
-}
-
-// spanLinks lead to the other spans.
-func (a loadAddress) spanLinks() (all []link) {
-	for i := range spans {
-		all = append(all, link{spans[i].Words, a.over(&spans[i]).link("course"), a.span == &spans[i]})
-	}
-	return all
-}
-
-// stepLinks lead back, on, and to the present.
-func (a loadAddress) stepLinks(now time.Time) []link {
-	end, begin := a.end(now), a.begin(now)
-	all := []link{{Text: "earlier", To: a.until(begin).link("course")}}
-	if a.live() {
-		return all
-	}
-	later := a.until(end.Add(end.Sub(begin)))
-	if later.to.After(now) {
-		later = a.until(time.Time{})
-	}
-	return append(all, link{Text: "later", To: later.link("course")}, link{Text: "to the present", To: a.until(time.Time{}).link("course")})
-}
-
-// byLinks lead to the other periods.
-func (a loadAddress) byLinks() (all []link) {
-	for _, by := range bys {
-		all = append(all, link{"by " + by, a.per(by).link("heat"), a.by == by})
-	}
-	return all
 }
 
 // hidden are the parameters that a form carries on, besides those that it asks for.

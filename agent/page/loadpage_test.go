@@ -327,3 +327,16 @@ func TestSheetOfEveryLoad(t *testing.T) {
 		}
 	}
 }
+
+// A month back from the last of March is the last of February.
+func TestSpansEndWithTheirMonths(t *testing.T) {
+	for to, want := range map[string]string{"2026-03-31": "2026-02-28", "2028-03-30": "2028-02-29", "2026-05-15": "2026-04-15", "2026-01-31": "2025-12-31"} {
+		end, err := time.Parse(time.DateOnly, to)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := months(1)(end).Format(time.DateOnly); got != want {
+			t.Errorf("a month back from %s is %s, want %s", to, got, want)
+		}
+	}
+}
