@@ -112,9 +112,11 @@ func (x *accountPage) fill(q *accountAsked, report *answer.Report) {
 	for name, values := range x.unitValues {
 		v[name] = values
 	}
-	// A colon needs no escape there (RFC 3986, 3.4), and reads better on paper.
-	x.Again = "/account?" + strings.ReplaceAll(v.Encode(), "%3A", ":")
+	x.Again = "/account?" + legible.Replace(v.Encode())
 }
+
+// legible takes escapes from a query that it does without (RFC 3986, 3.4).
+var legible = strings.NewReplacer("%3A", ":", "%2F", "/")
 
 // accountCSV answers with the same as CSV, as heatreeve report --format csv writes it.
 func (p *Page) accountCSV(w http.ResponseWriter, r *http.Request) {

@@ -2,6 +2,7 @@ package page
 
 import (
 	"fmt"
+	"strconv"
 	"time"
 
 	"heatreeve/agent/account"
@@ -132,7 +133,8 @@ func peakDuty(p *answer.PeriodReport) float64 {
 }
 
 // peakTime is when that was: the time of day within a day, else the day too; with the offset
-// where it is another one than at the beginning of the period.
+// where it is another one than at the beginning of the period, and with the part of the window
+// that was covered, where that is not the whole.
 func peakTime(p *answer.PeriodReport, by string, demand float64) string {
 	var at time.Time
 	covered := 1.0
@@ -144,7 +146,7 @@ func peakTime(p *answer.PeriodReport, by string, demand float64) string {
 	default:
 		at = p.Highest.Start
 	}
-	layout := "2 Jan 15:04"
+	layout := "2\u00a0Jan 15:04"
 	if by == "hour" || by == "day" {
 		layout = "15:04"
 	}
@@ -154,7 +156,7 @@ func peakTime(p *answer.PeriodReport, by string, demand float64) string {
 	}
 	text := at.Format(layout)
 	if demand != 0 && covered < 1 {
-		text += ", " + coverageText(covered) + " of it"
+		text += " (" + strconv.Itoa(int(100*covered+1e-9)) + "\u00a0%)"
 	}
 	return text
 }

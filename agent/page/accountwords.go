@@ -86,7 +86,10 @@ func registerLines(l *answer.LoadReport, u shown.Units) []string {
 }
 
 // witnessTable has what another meter counted beside what the load served in the same spans.
-type witnessTable struct{ Rows []witnessRow }
+type witnessTable struct {
+	Rows  []witnessRow
+	Total witnessRow
+}
 
 type witnessRow struct{ Period, Offset, Counted, Served, Deviation, Spread string }
 
@@ -107,14 +110,12 @@ func witnessOf(r *answer.Report, l *answer.LoadReport, u shown.Units) *witnessTa
 		}
 		t.Rows = append(t.Rows, row)
 	}
-	total := witnessRowOf(&l.Total, u)
-	total.Period = "Total"
-	t.Rows = append(t.Rows, total)
+	t.Total = witnessRowOf(&l.Total, u)
 	for _, column := range [...]func(*witnessRow) *string{
 		func(r *witnessRow) *string { return &r.Counted }, func(r *witnessRow) *string { return &r.Served },
 		func(r *witnessRow) *string { return &r.Deviation }, func(r *witnessRow) *string { return &r.Spread },
 	} {
-		var texts []*string
+		texts := []*string{column(&t.Total)}
 		for i := range t.Rows {
 			texts = append(texts, column(&t.Rows[i]))
 		}
