@@ -151,7 +151,7 @@ func spanOf(by string) *span {
 func periodName(t time.Time, by string) string {
 	switch by {
 	case "hour":
-		return t.Format("Mon 2 Jan 2006 15:04 -07:00")
+		return t.Format("2 Jan 15:04 -07:00")
 	case "day":
 		return t.Format("Mon 2 Jan 2006")
 	}

@@ -55,7 +55,7 @@ func TestHeatOnThePage(t *testing.T) {
 	if i != 24 {
 		t.Errorf("%d bars", i)
 	}
-	tells(t, heat, "Wed 2 Dec 2026 11:00 +00:00 2.300 0.000 0.020", "75.0 % 12.5 %", "together 27.60 0.00 0.56")
+	tells(t, heat, "2 Dec 11:00 +00:00 2.300 0.000 0.020", "75.0 % 12.5 %", "together 27.60 0.00 0.56")
 }
 
 func TestHeatInOtherUnits(t *testing.T) {
