@@ -7,6 +7,8 @@ import (
 	"net/http"
 	"net/netip"
 	"strings"
+
+	"heatreeve/agent/answer"
 )
 
 // guard is who may look at what the agent shows, and what they may do.
@@ -101,15 +103,24 @@ func (g *guard) front(h http.Handler) http.Handler {
 		case !g.openly && !g.terms.authenticates() && !toLoopback(r.Host):
 			// A page from elsewhere may have its own name lead here, to be told what its reader is told
 			// (DNS rebinding); to the browser it is all one site.
-			http.Error(w, fmt.Sprintf("%q is no name of this machine's loopback: ask for http://localhost or http://127.0.0.1 with the port; "+
-				"for other names, behind a proxy too, start the agent with --web-config and a password, or with --openly", r.Host), http.StatusMisdirectedRequest)
+			turnAway(w, r, http.StatusMisdirectedRequest, fmt.Sprintf("%q is no name of this machine's loopback: ask for http://localhost or http://127.0.0.1 with the port; "+
+				"for other names, behind a proxy too, start the agent with --web-config and a password, or with --openly", r.Host))
 		case r.Method != http.MethodGet && r.Method != http.MethodHead:
 			w.Header().Set("Allow", "GET, HEAD")
-			http.Error(w, "here is nothing to be changed: allowed are GET and HEAD", http.StatusMethodNotAllowed)
+			turnAway(w, r, http.StatusMethodNotAllowed, "here is nothing to be changed: allowed are GET and HEAD")
 		default:
 			h.ServeHTTP(w, r)
 		}
 	})
+}
+
+// turnAway says why there is no answer, to a program as a problem.
+func turnAway(w http.ResponseWriter, r *http.Request, status int, why string) {
+	if strings.HasPrefix(r.URL.Path, apiPath) {
+		answer.Refuse(w, status, why)
+		return
+	}
+	http.Error(w, why, status)
 }
 
 // toLoopback tells whether a request is for the loopback by its own names.
@@ -129,7 +140,7 @@ func (g *guard) behind(h http.Handler) http.Handler {
 	}
 	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
 		if now, _, err := readTerms(g.file); err != nil || !now.authenticates() {
-			http.Error(w, "the web configuration no longer asks for passwords or the certificates of clients, as it did at the start; put them back, or start the agent anew", http.StatusServiceUnavailable)
+			turnAway(w, r, http.StatusServiceUnavailable, "the web configuration no longer asks for passwords or the certificates of clients, as it did at the start; put them back, or start the agent anew")
 			return
 		}
 		h.ServeHTTP(w, r)

@@ -10,6 +10,8 @@ import (
 	"testing"
 
 	"golang.org/x/crypto/bcrypt"
+
+	"heatreeve/agent/answer"
 )
 
 // hashed is a bcrypt hash, the cheapest that there is.
@@ -130,6 +132,15 @@ func TestFrontOfAll(t *testing.T) {
 		}
 		if w.Code == 421 && !strings.Contains(w.Body.String(), "--web-config") {
 			t.Errorf("%s does not say what to do", w.Body)
+		}
+		checkBounds(t, w.Header())
+		if w.Code < 400 {
+			continue
+		}
+		r.URL.Path, w = reportPath, httptest.NewRecorder()
+		tt.guard.front(said).ServeHTTP(w, r)
+		if w.Code != tt.want || w.Header().Get("Content-Type") != answer.ProblemType {
+			t.Errorf("%s of the API at %q: %d %v", tt.method, tt.host, w.Code, w.Header())
 		}
 		checkBounds(t, w.Header())
 	}
