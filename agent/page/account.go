@@ -77,7 +77,7 @@ func (p *Page) account(w http.ResponseWriter, r *http.Request) {
 	if report != nil {
 		x.fill(&q, report)
 	}
-	p.render(w, status, "account.html", &x)
+	p.render(w, r, status, "account.html", &x)
 }
 
 func (p *Page) accountForm(q *accountAsked) accountForm {

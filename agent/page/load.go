@@ -82,7 +82,7 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 		sheet.fill(ctx)
 		x.Sheet = sheet
 	}
-	p.render(w, status, "load.html", &x)
+	p.render(w, r, status, "load.html", &x)
 }
 
 // sheetOf reads an address; where it is wrong, the sheet is that of what of it is right, and the

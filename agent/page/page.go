@@ -127,14 +127,18 @@ func (f *frame) LoadLink(load string, parameters ...string) string {
 func spaced(text string) string { return strings.Join(strings.Fields(text), " ") }
 
 // render writes a page, whole or not at all.
-func (p *Page) render(w http.ResponseWriter, status int, name string, data any) {
+func (p *Page) render(w http.ResponseWriter, r *http.Request, status int, name string, data any) {
 	var b bytes.Buffer
 	if err := p.templates.ExecuteTemplate(&b, name, data); err != nil {
 		http.Error(w, "page "+name+": "+err.Error(), http.StatusInternalServerError)
 		return
 	}
-	w.Header().Set("Content-Type", "text/html; charset=utf-8")
 	w.Header().Set("Cache-Control", "no-store")
+	if status == http.StatusOK {
+		Answer(w, r, "text/html; charset=utf-8", b.Bytes())
+		return
+	}
+	w.Header().Set("Content-Type", "text/html; charset=utf-8")
 	w.WriteHeader(status)
 	_, _ = w.Write(b.Bytes()) // who asked has gone
 }

@@ -1,6 +1,7 @@
 package page
 
 import (
+	"bytes"
 	"context"
 	"encoding/json"
 	"fmt"
@@ -73,9 +74,8 @@ func (p *Page) ribbonPaths(w http.ResponseWriter, r *http.Request) {
 			all[load] = x
 		}
 	}
-	w.Header().Set("Content-Type", "application/json")
-	w.Header().Set("Cache-Control", "no-store")
-	_ = json.NewEncoder(w).Encode(all) // who asked has gone
+	body, _ := json.Marshal(all) // of texts
+	Answer(w, r, "application/json", body)
 }
 
 // ribbonImage is a ribbon for those who have no script.
@@ -85,9 +85,10 @@ func (p *Page) ribbonImage(w http.ResponseWriter, r *http.Request) {
 		http.Error(w, err.Error(), http.StatusNotFound)
 		return
 	}
-	w.Header().Set("Content-Type", "image/svg+xml")
-	w.Header().Set("Cache-Control", "no-store")
-	if err := p.templates.ExecuteTemplate(w, "ribbon.svg", x); err != nil {
-		return // who asked has gone
+	var b bytes.Buffer
+	if err := p.templates.ExecuteTemplate(&b, "ribbon.svg", x); err != nil {
+		http.Error(w, err.Error(), http.StatusInternalServerError)
+		return
 	}
+	Answer(w, r, "image/svg+xml", b.Bytes())
 }

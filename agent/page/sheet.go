@@ -56,7 +56,7 @@ func (p *Page) sheet(w http.ResponseWriter, r *http.Request) {
 	if x.Fault != "" {
 		status = http.StatusBadRequest
 	}
-	p.render(w, status, "sheet.html", &x)
+	p.render(w, r, status, "sheet.html", &x)
 }
 
 // exchangerLine is an exchanger in a line.

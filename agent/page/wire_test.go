@@ -1,6 +1,7 @@
 package page
 
 import (
+	"compress/gzip"
 	"io"
 	"net/http"
 	"net/http/httptest"
@@ -118,5 +119,34 @@ func TestBounded(t *testing.T) {
 	resp = answered(t, h, "DELETE", http.Header{"If-None-Match": {"*"}})
 	if body, err := io.ReadAll(resp.Body); err != nil || resp.StatusCode != 405 || len(body) != long || resp.Header.Get("ETag") != "" {
 		t.Errorf("refused: %d %v, %d bytes, %v", resp.StatusCode, resp.Header, len(body), err)
+	}
+}
+
+// Who takes gzip is given it, of long answers, with a validator of its own that holds.
+func TestAnswerIsCompressed(t *testing.T) {
+	packed := answered(t, letters(long), http.MethodGet, http.Header{"Accept-Encoding": {"gzip"}})
+	plain := answered(t, letters(long), http.MethodGet, nil)
+	tag := packed.Header.Get("ETag")
+	if packed.Header.Get("Content-Encoding") != "gzip" || packed.Header.Get("Vary") != "Accept-Encoding" || tag == "" || tag == plain.Header.Get("ETag") {
+		t.Errorf("%v; plain %v", packed.Header, plain.Header)
+	}
+	z, err := gzip.NewReader(packed.Body)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if text, err := io.ReadAll(z); err != nil || string(text) != strings.Repeat("a", long) {
+		t.Errorf("%d bytes, %v", len(text), err)
+	}
+	again := answered(t, letters(long), http.MethodGet, http.Header{"Accept-Encoding": {"gzip"}, "If-None-Match": {tag}})
+	if body, _ := io.ReadAll(again.Body); again.StatusCode != http.StatusNotModified || len(body) != 0 || again.Header.Get("ETag") != tag {
+		t.Errorf("asked again: %s, %d bytes, %v", again.Status, len(body), again.Header)
+	}
+	for _, take := range []string{"", "br", "gzip;q=0"} {
+		if got := answered(t, letters(long), http.MethodGet, http.Header{"Accept-Encoding": {take}}).Header.Get("Content-Encoding"); got != "" {
+			t.Errorf("who takes %q is given %s", take, got)
+		}
+	}
+	if short := answered(t, letters(100), http.MethodGet, http.Header{"Accept-Encoding": {"gzip"}}); short.Header.Get("Content-Encoding") != "" {
+		t.Error("100 bytes are compressed")
 	}
 }
