@@ -91,8 +91,9 @@ func (e *edition) turn(s *view.Snapshot, at int64, u shown.Units) {
 	e.number++
 }
 
-// eventsOf are the server-sent events (WHATWG HTML, 9.2) that lead from before, which is empty
-// or as long, to fresh.
+// eventsOf are the server-sent events (WHATWG HTML, 9.2) that lead from before, which is as
+// long, to fresh. Where before is empty they tell all of fresh, also what there is none of: who
+// reads them may have the texts of any earlier beat.
 //
 // The first has no name. Its data are the event time in Unix seconds, "|", and the loads in
 // their order, parted by commas: of each the duty, its ±, what is expected and the allowance,
@@ -105,10 +106,9 @@ func eventsOf(before, fresh []now, at int64) []byte {
 	b := append([]byte("data: "), strconv.FormatInt(at/1e9, 10)...)
 	b = append(b, '|')
 	var words [][3]any
-	var none now
 	same, first := 0, true
 	for i := range fresh {
-		was := &none
+		was := &unknown
 		if i < len(before) {
 			was = &before[i]
 		}
@@ -131,6 +131,9 @@ func eventsOf(before, fresh []now, at int64) []byte {
 	text, _ := json.Marshal(words) // of numbers and texts
 	return fmt.Appendf(b, "event: words\ndata: %s\n\n", text)
 }
+
+// unknown differs in each of its texts from whatever may be shown.
+var unknown = now{Verdict: "?", Note: "?", Duty: "?", Spread: "?", Expected: "?", Allowed: "?"}
 
 // changed are the fields of a load up to the last that has changed; those that have not are
 // empty.

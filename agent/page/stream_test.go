@@ -96,12 +96,14 @@ func many(n int) []view.Load {
 	return all
 }
 
-// Whatever changes between beats, who follows the changes has the same texts as who is told all.
+// Whatever changes between beats, who follows the changes has the same texts as who is told all,
+// and as who comes back with the texts of an earlier beat.
 func TestChangesLeadToWhatIsShown(t *testing.T) {
 	p, source := mill(t, many(12)...)
 	key := p.usual.Key()
 	p.feed.join(key)
 	follower := &reader{fields: make([][4]string, 12), words: map[int][2]string{}}
+	late := &reader{fields: make([][4]string, 12), words: map[int][2]string{}}
 	number := uint64(0)
 	for beat := range 200 {
 		s := *source.snapshot
@@ -125,17 +127,22 @@ func TestChangesLeadToWhatIsShown(t *testing.T) {
 		fresh := &reader{fields: make([][4]string, 12), words: map[int][2]string{}}
 		all, _, _ := p.since(key, p.usual, 0)
 		fresh.events(t, string(all))
+		readers := []*reader{follower, fresh}
+		if beat%3 == 2 {
+			late.events(t, string(all))
+			readers = append(readers, late)
+		}
 		for i := range s.Loads {
 			n := nowOf(&s, i, noon.UnixNano(), p.usual)
 			want := [4]string{n.Duty, n.Spread, n.Expected, n.Allowed}
-			for _, r := range []*reader{follower, fresh} {
+			for _, r := range readers {
 				for k := range want {
 					got := r.fields[i][k]
 					if got == "-" {
 						got = map[bool]string{true: "–", false: ""}[k == 0]
 					}
 					if got != want[k] {
-						t.Fatalf("beat %d, load %d, field %d: %q is followed, %q shown", beat, i, k, got, want[k])
+						t.Fatalf("beat %d, load %d, field %d: %q is told, %q shown", beat, i, k, got, want[k])
 					}
 				}
 				if r.words[i] != [2]string{n.Verdict, n.Note} || r.at != s.At/1e9 {
