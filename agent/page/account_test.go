@@ -1,9 +1,11 @@
 package page
 
 import (
+	"context"
 	"fmt"
 	"net/http"
 	"net/url"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -228,6 +230,57 @@ func TestAccountOfWhat(t *testing.T) {
 		if got := get(p, "/account.csv"+tt.query).Code; tt.err != nil && got != statusOf(tt.err) {
 			t.Errorf("%s as csv: %d", tt.query, got)
 		}
+	}
+}
+
+// Who has to wait too long is told when to ask again.
+func TestAccountThatTakesTooLong(t *testing.T) {
+	p, source := mill(t, cooler())
+	source.report = func(answer.Query) (*answer.Report, error) {
+		return nil, fmt.Errorf("read hours: %w", context.DeadlineExceeded)
+	}
+	w := get(p, "/account?from=2020")
+	if w.Code != http.StatusServiceUnavailable || w.Header().Get("Retry-After") == "" {
+		t.Errorf("status %d, %v", w.Code, w.Header())
+	}
+	tells(t, parsed(t, w.Body.String()), "ask for a shorter time, or again in a while")
+}
+
+// Many loads are told by the month, unless it is said how.
+func TestAccountOfManyLoads(t *testing.T) {
+	p, source := mill(t, cooler())
+	for range manyLoads {
+		p.Site.Loads = append(p.Site.Loads, p.Site.Loads[0])
+	}
+	for query, want := range map[string]string{"": "month", "?by=day": "day", "?load=cooler": "day"} {
+		source.report = func(q answer.Query) (*answer.Report, error) {
+			if q.By != want {
+				t.Errorf("%q: by %s, want %s", query, q.By, want)
+			}
+			return twoDays(t), nil
+		}
+		get(p, "/account"+query)
+	}
+}
+
+// The ways to usual times keep the load and the units.
+func TestWaysToUsualTimes(t *testing.T) {
+	p, source := mill(t, cooler())
+	source.report = func(answer.Query) (*answer.Report, error) { return twoDays(t), nil }
+	var got []string
+	for _, nav := range elements(parsed(t, get(p, "/account?load=cooler&heat=GJ").Body.String()), "nav") {
+		for _, a := range elements(nav, "a") {
+			if attribute(nav, "aria-label") == "Usual times" {
+				got = append(got, strings.TrimPrefix(attribute(a, "href"), "/account?"))
+			}
+		}
+	}
+	want := []string{
+		"by=hour&from=2026-12-01&heat=GJ&load=cooler", "by=hour&from=2026-11-30&heat=GJ&load=cooler&to=2026-12-01", "by=day&from=2026-12-01&heat=GJ&load=cooler",
+		"by=day&from=2026-11-01&heat=GJ&load=cooler&to=2026-12-01", "by=month&from=2026-01-01&heat=GJ&load=cooler",
+	}
+	if !slices.Equal(got, want) {
+		t.Errorf("%q, want %q", got, want)
 	}
 }
 
