@@ -80,7 +80,7 @@ func assets() http.Handler {
 		switch {
 		case strings.Contains(r.Header.Get("If-None-Match"), a.tag):
 			w.WriteHeader(http.StatusNotModified)
-		case a.gzip != nil && strings.Contains(r.Header.Get("Accept-Encoding"), "gzip"):
+		case a.gzip != nil && takesGzip(r.Header.Values("Accept-Encoding")):
 			h.Set("Content-Encoding", "gzip")
 			_, _ = w.Write(a.gzip)
 		default:

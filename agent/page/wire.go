@@ -5,10 +5,6 @@ import (
 	"crypto/sha256"
 	"encoding/base64"
 	"net/http"
-	"strconv"
-
-	"github.com/klauspost/compress/gzhttp"
-	"github.com/klauspost/compress/gzip"
 )
 
 // Answer writes a whole answer of a kind, as a media type names it: with a strong validator, made of
@@ -21,23 +17,16 @@ func Answer(w http.ResponseWriter, r *http.Request, kind string, body []byte) {
 	if h.Get("Cache-Control") == "" {
 		h.Set("Cache-Control", "no-cache")
 	}
-	h.Set("ETag", tagOf(body))
-	h.Set("Content-Length", strconv.Itoa(len(body)))
-	c := &conditional{ResponseWriter: w, have: r.Header.Values("If-None-Match")}
-	packer(http.HandlerFunc(func(w http.ResponseWriter, _ *http.Request) {
-		_, _ = w.Write(body) // who asked has gone
-	})).ServeHTTP(c, r)
-}
-
-// packer compresses what is longer than a packet for those who take it so; its validator is then
-// another (RFC 9110, 8.8.3.3).
-var packer = func() func(http.Handler) http.HandlerFunc {
-	pack, err := gzhttp.NewWrapper(gzhttp.MinSize(1400), gzhttp.CompressionLevel(gzip.BestSpeed), gzhttp.SuffixETag("-gzip"))
-	if err != nil {
-		panic(err) // of options that are none
+	tag := tagOf(body)
+	h.Add("Vary", "Accept-Encoding")
+	if len(body) >= leastPacked && takesGzip(r.Header.Values("Accept-Encoding")) {
+		h.Set("Content-Encoding", "gzip")
+		body, tag = packedUp(body), tag[:len(tag)-1]+`-gzip"` // another validator (RFC 9110, 8.8.3.3)
 	}
-	return pack
-}()
+	h.Set("ETag", tag)
+	c := &conditional{ResponseWriter: w, have: r.Header.Values("If-None-Match")}
+	_, _ = c.Write(body) // who asked has gone
+}
 
 // tagOf is the entity tag of a body.
 func tagOf(body []byte) string {

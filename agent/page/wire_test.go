@@ -141,12 +141,20 @@ func TestAnswerIsCompressed(t *testing.T) {
 	if body, _ := io.ReadAll(again.Body); again.StatusCode != http.StatusNotModified || len(body) != 0 || again.Header.Get("ETag") != tag {
 		t.Errorf("asked again: %s, %d bytes, %v", again.Status, len(body), again.Header)
 	}
-	for _, take := range []string{"", "br", "gzip;q=0"} {
+	for _, take := range []string{"", "br", "gzip;q=0", "*, gzip; q=0", "gzip;q=x"} {
 		if got := answered(t, letters(long), http.MethodGet, http.Header{"Accept-Encoding": {take}}).Header.Get("Content-Encoding"); got != "" {
 			t.Errorf("who takes %q is given %s", take, got)
 		}
 	}
 	if short := answered(t, letters(100), http.MethodGet, http.Header{"Accept-Encoding": {"gzip"}}); short.Header.Get("Content-Encoding") != "" {
 		t.Error("100 bytes are compressed")
+	}
+}
+
+func TestTakesGzip(t *testing.T) {
+	for _, lines := range [][]string{{"gzip"}, {"deflate, gzip;q=0.5"}, {"*"}, {"br", "GZIP"}, {"identity;q=0, *;q=0.1"}} {
+		if !takesGzip(lines) {
+			t.Errorf("%q takes it", lines)
+		}
 	}
 }
