@@ -53,7 +53,7 @@ func TestWarningIsOneEventThroughKills(t *testing.T) {
 			t.Fatalf("run %d: %q, want one warning", i, all)
 		}
 		told = append(told, all[0])
-		if _, over := strings.CutPrefix(all[0], "warning: short, over"); over != (cut > 900) {
+		if _, over := strings.CutPrefix(all[0], "warning: short, ended"); over != (cut > 900) {
 			t.Errorf("run %d: %q", i, all)
 		}
 		if listed := l.board.Listed(); len(listed) != 1 || (listed[0].State() == warn.Returned) != (cut > 900) {

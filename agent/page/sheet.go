@@ -24,7 +24,7 @@ type sheetOfLoads struct {
 	Bands    []band
 	Hidden   int       // bands that the filter leaves out
 	Warnings []warning // that stand
-	Returned []warning // that are over, and nobody has marked as seen
+	Returned []warning // that have ended, and nobody has marked as seen
 	// Exchangers are those of which there is something to tell.
 	Exchangers []exchangerLine
 	Hours      []string // along the ribbons

@@ -105,7 +105,7 @@ func (e *Entry) Text(place *time.Location) string {
 	if e.End == 0 {
 		fmt.Fprintf(&b, "%s: %s when it was raised", e.Kind, Deviation(e.Kind, e.Now))
 	} else {
-		fmt.Fprintf(&b, "%s, over; at the greatest %s", e.Kind, Deviation(e.Kind, e.Greatest))
+		fmt.Fprintf(&b, "%s, ended; at the greatest %s", e.Kind, Deviation(e.Kind, e.Greatest))
 	}
 	fmt.Fprintf(&b, "; since %s", clock(e.Since, place))
 	if e.Times > 1 {

@@ -316,7 +316,7 @@ func TestText(t *testing.T) {
 		t.Errorf("%q\nwant %q", got, want)
 	}
 	c.end(base, base+hour)
-	if got := c.Entries[0].Text(time.UTC); !strings.HasPrefix(got, "short, over; at the greatest 20.0 %") {
+	if got := c.Entries[0].Text(time.UTC); !strings.HasPrefix(got, "short, ended; at the greatest 20.0 %") {
 		t.Errorf("%q", got)
 	}
 }

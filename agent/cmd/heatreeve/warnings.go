@@ -103,7 +103,7 @@ func tellWarning(w io.Writer, d *warn.Document) {
 	line("since " + clockOf(d.Since))
 	line("raised " + clockOf(d.Begin))
 	if d.End != nil {
-		line("over " + clockOf(*d.End))
+		line("ended " + clockOf(*d.End))
 	}
 	if d.Times > 1 {
 		line(fmt.Sprintf("has begun %d times", d.Times))

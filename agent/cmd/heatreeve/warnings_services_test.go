@@ -93,7 +93,7 @@ func TestWarningThroughAKill(t *testing.T) {
 		t.Errorf("retained at the end: %+v", d)
 	}
 	out, status := a.command(t, "events", "--subject", "circuit", "--format", "csv")
-	for _, want := range []string{",warning,circuit,\"short, over", ",acknowledged,circuit,", ",shelved,circuit,"} {
+	for _, want := range []string{",warning,circuit,\"short, ended", ",acknowledged,circuit,", ",shelved,circuit,"} {
 		if status != exitGood || strings.Count(out, want) != 1 {
 			t.Errorf("status %d: %s, want %q once", status, out, want)
 		}
