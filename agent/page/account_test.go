@@ -361,3 +361,24 @@ func TestAccountOfNothingMeasured(t *testing.T) {
 		t.Errorf("%q, want %q", got, want)
 	}
 }
+
+// BenchmarkAccount makes the longest account that a history answers: a year of hours, and a half.
+func BenchmarkAccount(b *testing.B) {
+	l := answer.LoadReport{Load: "hall"}
+	begin := time.Date(2026, 1, 1, 0, 0, 0, 0, time.UTC)
+	for i := range 12_000 {
+		at := begin.Add(time.Duration(i) * time.Hour)
+		l.Periods = append(l.Periods, even(at, at.Add(time.Hour), float64(i%60)))
+	}
+	end := begin.Add(12_000 * time.Hour)
+	l.Total = even(begin, end, 0)
+	p, source := mill(b, cooler())
+	source.report = func(answer.Query) (*answer.Report, error) {
+		return &answer.Report{By: "hour", Zone: "UTC", From: begin, To: end, Accounted: end, Loads: []answer.LoadReport{l}}, nil
+	}
+	size := 0
+	for b.Loop() {
+		size = get(p, "/account?from=2026-01&by=hour").Body.Len()
+	}
+	b.ReportMetric(float64(size), "B/page")
+}

@@ -56,7 +56,7 @@ func (f *fixed) Series(_ context.Context, q answer.SeriesQuery) (*answer.Series,
 var noon = time.Date(2026, 12, 1, 12, 0, 0, 0, time.UTC)
 
 // mill is a plant of loads in several states.
-func mill(t *testing.T, all ...view.Load) (*Page, *fixed) {
+func mill(t testing.TB, all ...view.Load) (*Page, *fixed) {
 	t.Helper()
 	s := &site.Site{Name: "Mill", Zone: time.UTC, Shown: shown.Usual()}
 	for i := range all {
