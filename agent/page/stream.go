@@ -15,6 +15,8 @@ const (
 	streamStall = 10 * time.Second
 	// streamSilence is how long a stream says nothing where the beat stands still.
 	streamSilence = 15 * time.Second
+	// streamKind is the media type of server-sent events.
+	streamKind = "text/event-stream"
 )
 
 // stream sends the present figures as server-sent events, all of them first, and then at each
@@ -24,6 +26,10 @@ func (p *Page) stream(w http.ResponseWriter, r *http.Request) {
 	u, err := shown.Choose(r.URL.Query(), p.usual)
 	if err != nil {
 		http.Error(w, err.Error(), http.StatusBadRequest)
+		return
+	}
+	if r.Method == http.MethodHead { // to whom nothing is written, which would tell when they have gone
+		w.Header().Set("Content-Type", streamKind)
 		return
 	}
 	if p.streams.Add(1) > mostStreams {
@@ -37,7 +43,7 @@ func (p *Page) stream(w http.ResponseWriter, r *http.Request) {
 	p.feed.join(key)
 	defer p.feed.leave(key)
 	h := w.Header()
-	h.Set("Content-Type", "text/event-stream")
+	h.Set("Content-Type", streamKind)
 	h.Set("Cache-Control", "no-store")
 	send := sender(w)
 	if !send(fmt.Appendf(nil, "retry: 2000\nevent: plan\ndata: %s\n\n", p.plan())) {

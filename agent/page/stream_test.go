@@ -246,3 +246,28 @@ func TestStreamIsServed(t *testing.T) {
 		t.Errorf("editions that nobody reads are kept: %d", len(p.feed.byUnit))
 	}
 }
+
+// Who asks for the head of the stream alone is answered at once, and keeps no place.
+func TestHeadOfTheStreamEnds(t *testing.T) {
+	p, _ := mill(t, many(2)...)
+	ended := make(chan struct{})
+	p.Ended = ended
+	server := httptest.NewServer(p)
+	defer server.Close()
+	defer close(ended)
+	client := &http.Client{Transport: &http.Transport{}, Timeout: 5 * time.Second}
+	defer client.CloseIdleConnections()
+	for range 2 { // the second one on the connection of the first
+		resp, err := client.Head(server.URL + "/api/v1/stream")
+		if err != nil {
+			t.Fatal(err)
+		}
+		resp.Body.Close()
+		if kind := resp.Header.Get("Content-Type"); kind != "text/event-stream" {
+			t.Errorf("content type %q", kind)
+		}
+	}
+	if n := p.streams.Load(); n != 0 {
+		t.Errorf("%d streams are kept open", n)
+	}
+}
