@@ -168,7 +168,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 	})
 	reg := a.registry()
 	reg.MustRegister(doors.metrics)
-	public := handler(page, metricsHandler(reg, a.collector(), a.o.Log), &a.health, reports, explains)
+	public := handler(page, metricsHandler(reg, a.collector(), a.o.Log), &a.health, reports, explains, a.o.Version)
 	log := newSparing(a.o.Log.Handler(), sparingEvery)
 	g.Go(func() error { return a.guard.serve(ctx, doors.public, public, log) })
 	g.Go(func() error {

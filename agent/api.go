@@ -6,6 +6,7 @@ import (
 	"encoding/json"
 	"errors"
 	"net/http"
+	"net/url"
 	"time"
 
 	"heatreeve/agent/answer"
@@ -15,11 +16,14 @@ import (
 // apiPath is where the interface for programs begins. All of it can only be read.
 const apiPath = "/api/v1/"
 
-// streamPath is where the page follows the figures.
-const streamPath = apiPath + "stream"
+const (
+	seriesPath = apiPath + "series"
+	// streamPath is where the page follows the figures.
+	streamPath = apiPath + "stream"
+)
 
-// noBeat is said before the first snapshot.
-const noBeat = "no beat yet"
+// errNoBeat is told before the first snapshot.
+var errNoBeat = errors.New("no beat yet")
 
 // errBusy says that the beat has not come to it.
 var errBusy = errors.New("the agent")
@@ -27,9 +31,11 @@ var errBusy = errors.New("the agent")
 // api are the handlers of the interface by their paths.
 type api map[string]http.Handler
 
-func newAPI(page http.Handler, r *reports, x *explains, h *health) api {
+func newAPI(page http.Handler, r *reports, x *explains, h *health, version string) api {
 	return api{
-		reportPath: r, explainPath: x, exportPath: newExports(r), warningsPath: newBoards(r, h), eventsPath: newEvents(r), streamPath: page,
+		sitePath: newPlace(x.site, version), loadsPath: newPresent(h, r.history.zone), seriesPath: newSeries(r.history),
+		reportPath: r, explainPath: x, exportPath: newExports(r), warningsPath: newBoards(r, h), eventsPath: newEvents(r.history),
+		streamPath: page, documentPath: http.HandlerFunc(document),
 	}
 }
 
@@ -46,6 +52,34 @@ func (a api) mount(mux *http.ServeMux) {
 			w.Header().Set("Allow", "GET, HEAD")
 			answer.Refuse(w, http.StatusMethodNotAllowed, "the interface can only be read, by GET")
 		})
+	}
+}
+
+// noParameters refuses what is asked of a path that takes nothing.
+func noParameters(v url.Values) error {
+	for name := range v {
+		return answer.Wrongf("%s is no parameter; known: none", name)
+	}
+	return nil
+}
+
+// documentPath is where the interface is described.
+const documentPath = apiPath + "openapi.json"
+
+// document tells what the interface is, by OpenAPI 3.1.
+func document(w http.ResponseWriter, r *http.Request) {
+	if err := noParameters(r.URL.Query()); err != nil {
+		refuse(w, err)
+		return
+	}
+	page.Answer(w, r, "application/json", page.OpenAPI())
+}
+
+// newSeries tells the course of loads.
+func newSeries(h history) http.Handler {
+	return &queries[answer.SeriesQuery, answer.Series]{
+		turn: newTurn(atATime, "other courses are in the making; try again in a while"),
+		read: answer.SeriesQueryOf, answer: h.series,
 	}
 }
 
@@ -79,7 +113,7 @@ func refuse(w http.ResponseWriter, err error) {
 		status = http.StatusBadRequest
 	case errors.Is(err, answer.ErrNoRecord):
 		status = http.StatusNotFound
-	case errors.Is(err, errBusy), errors.Is(err, context.DeadlineExceeded):
+	case errors.Is(err, errBusy), errors.Is(err, errNoBeat), errors.Is(err, context.DeadlineExceeded):
 		status = http.StatusServiceUnavailable
 	}
 	answer.Refuse(w, status, err.Error())

@@ -1,10 +1,14 @@
 package agent
 
 import (
+	"cmp"
 	"context"
+	"fmt"
 	"math"
 	"net/http"
+	"net/url"
 	"slices"
+	"strconv"
 	"strings"
 	"time"
 
@@ -58,18 +62,69 @@ func (h *history) events(ctx context.Context, q answer.EventQuery) (*answer.Even
 	if err != nil {
 		return nil, err
 	}
-	out := &answer.Events{Site: h.site, Zone: zone.String(), Events: []answer.Event{}}
+	p := eventPage{query: q, zone: zone, out: answer.Events{Site: h.site, Zone: zone.String(), Events: []answer.Event{}}}
+	if err := p.begin(); err != nil {
+		return nil, err
+	}
 	for e, err := range h.db.Events(from, to) {
-		switch {
-		case ctx.Err() != nil:
+		if ctx.Err() != nil {
 			return nil, ctx.Err()
-		case err != nil:
-			out.Unused++
-		case (q.Kind == "" || e.Kind == q.Kind) && (q.Subject == "" || e.Subject == q.Subject):
-			out.Events = append(out.Events, toldEvent(&e, zone))
+		}
+		if !p.take(&e, err) {
+			return &p.out, nil
 		}
 	}
-	return out, nil
+	p.out.Unused += p.damaged
+	return &p.out, nil
+}
+
+// eventPage is a page of events in the making.
+type eventPage struct {
+	query   answer.EventQuery
+	zone    *time.Location
+	at      int64 // of the event behind which the page begins, which bears the number
+	number  uint64
+	last    store.Event // on the page
+	damaged int         // records since then that cannot be read
+	out     answer.Events
+}
+
+// begin reads where the page begins.
+func (p *eventPage) begin() error {
+	p.at = math.MinInt64
+	if p.query.After == "" {
+		return nil
+	}
+	at, number, _ := strings.Cut(p.query.After, ".")
+	var err, err2 error
+	p.at, err = strconv.ParseInt(at, 10, 64)
+	p.number, err2 = strconv.ParseUint(number, 10, 64)
+	if err != nil || err2 != nil {
+		return answer.Wrongf("after %q is no place among events; take it from next of the page before", p.query.After)
+	}
+	return nil
+}
+
+// take puts an event on the page where it belongs there; false once the page is full, and there
+// are more. A record that cannot be read counts on the page that goes past it.
+func (p *eventPage) take(e *store.Event, err error) bool {
+	q := &p.query
+	switch {
+	case err != nil:
+		p.damaged++
+	case cmp.Or(cmp.Compare(e.At, p.at), cmp.Compare(e.Number, p.number)) <= 0:
+		p.damaged = 0
+	case q.Kind != "" && e.Kind != q.Kind, q.Subject != "" && e.Subject != q.Subject:
+	case q.Limit > 0 && len(p.out.Events) == q.Limit:
+		next := *q
+		next.After = fmt.Sprintf("%d.%d", p.last.At, p.last.Number)
+		p.out.Next = eventsPath + "?" + next.Values().Encode()
+		return false
+	default:
+		p.out.Events = append(p.out.Events, toldEvent(e, p.zone))
+		p.out.Unused, p.damaged, p.last = p.out.Unused+p.damaged, 0, *e
+	}
+	return true
 }
 
 func toldEvent(e *store.Event, zone *time.Location) answer.Event {
@@ -81,42 +136,23 @@ func toldEvent(e *store.Event, zone *time.Location) answer.Event {
 	return told
 }
 
-// happenings tells events while the agent runs, to one at a time.
-type happenings struct {
-	history history
-	turn    turn
-}
-
-func newEvents(r *reports) *happenings {
-	return &happenings{history: r.history, turn: newTurn(atATime, "other events are being told; try again in a while")}
-}
-
-func (s *happenings) ServeHTTP(w http.ResponseWriter, r *http.Request) {
-	q, err := answer.EventQueryOf(r.URL.Query())
-	if err != nil {
-		refuse(w, err)
-		return
+// newEvents tells events by pages.
+func newEvents(h history) http.Handler {
+	return &queries[answer.EventQuery, answer.Events]{
+		turn: newTurn(atATime, "other events are being told; try again in a while"),
+		read: answer.EventQueryOf,
+		answer: func(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
+			q.Limit = cmp.Or(q.Limit, answer.UsualPage)
+			return h.events(ctx, q)
+		},
 	}
-	ctx, cancel := context.WithTimeout(r.Context(), reportTime)
-	defer cancel()
-	allow(w, reportTime+reportStall)
-	if !s.turn.taken(ctx, w) {
-		return
-	}
-	defer s.turn.free()
-	all, err := s.history.events(ctx, q)
-	if err != nil {
-		refuse(w, err)
-		return
-	}
-	hand(w, r, all, reportStall)
 }
 
 // Happened tells the events of a history: a data folder, or a copy of its file. Where an agent
 // runs on the folder, it is asked. What is wrong with q is a [*QueryError].
 func Happened(ctx context.Context, data string, q answer.EventQuery) (e *answer.Events, err error) {
 	err = reach(data, func(a address) (err error) {
-		e, err = request[answer.Events](ctx, a, eventsPath, q.Values(), reportTime, answerBytes)
+		e, err = a.happened(ctx, q)
 		return err
 	}, func(h history) (err error) {
 		e, err = h.events(ctx, q)
@@ -126,4 +162,29 @@ func Happened(ctx context.Context, data string, q answer.EventQuery) (e *answer.
 		return nil, err
 	}
 	return e, nil
+}
+
+// happened has the agent at a tell all events that q asks for, page by page.
+func (a address) happened(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
+	all := &answer.Events{Events: []answer.Event{}}
+	for q.Limit = answer.MostPage; ; {
+		e, err := request[answer.Events](ctx, a, eventsPath, q.Values(), reportTime, answerBytes)
+		if err != nil {
+			return nil, err
+		}
+		all.Site, all.Zone, all.Unused = e.Site, e.Zone, all.Unused+e.Unused
+		all.Events = append(all.Events, e.Events...)
+		if e.Next == "" {
+			return all, nil
+		}
+		next, err := url.Parse(e.Next)
+		if err != nil {
+			return nil, fmt.Errorf("agent at %s: its next page: %w", a.hostPort, err)
+		}
+		after := next.Query().Get("after")
+		if len(e.Events) == 0 || after == q.After {
+			return nil, fmt.Errorf("agent at %s: its events come to no end at %q", a.hostPort, after)
+		}
+		q.After = after
+	}
 }

@@ -41,9 +41,13 @@ type boards struct {
 func newBoards(r *reports, h *health) *boards { return &boards{h, r.history.zone} }
 
 func (s *boards) ServeHTTP(w http.ResponseWriter, r *http.Request) {
+	if err := noParameters(r.URL.Query()); err != nil {
+		refuse(w, err)
+		return
+	}
 	v := s.health.latest.Load()
 	if v == nil {
-		answer.Refuse(w, http.StatusServiceUnavailable, noBeat)
+		refuse(w, errNoBeat)
 		return
 	}
 	hand(w, r, standingOf(v.Site, v.At, &v.Warnings, s.zone), reportStall)

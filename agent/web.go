@@ -20,13 +20,13 @@ come first.`
 
 // handler serves the page, the metrics, the two answers that supervisors ask for, reports,
 // explanations and exports.
-func handler(page, metrics http.Handler, health *health, reports *reports, explains *explains) http.Handler {
+func handler(page, metrics http.Handler, health *health, reports *reports, explains *explains, version string) http.Handler {
 	mux := http.NewServeMux()
 	mux.Handle("GET /", page)
 	mux.Handle("GET /metrics", metrics)
 	mux.HandleFunc("GET /healthz", faultless(health.alive))
 	mux.HandleFunc("GET /readyz", faultless(health.ready))
-	newAPI(page, reports, explains, health).mount(mux)
+	newAPI(page, reports, explains, health, version).mount(mux)
 	return mux
 }
 

@@ -3,8 +3,12 @@ package page
 import (
 	"fmt"
 	"net/http"
+	"net/url"
+	"slices"
+	"strings"
 	"time"
 
+	"heatreeve/agent/answer"
 	"heatreeve/agent/shown"
 )
 
@@ -23,9 +27,9 @@ const (
 // beat those that have changed; see eventsOf. Before them comes one named plan, which tells
 // the site file and the program apart from others: a page of another plan is to be loaded anew.
 func (p *Page) stream(w http.ResponseWriter, r *http.Request) {
-	u, err := shown.Choose(r.URL.Query(), p.usual)
+	u, err := p.unitsOf(r.URL.Query())
 	if err != nil {
-		http.Error(w, err.Error(), http.StatusBadRequest)
+		answer.Refuse(w, http.StatusBadRequest, err.Error())
 		return
 	}
 	if r.Method == http.MethodHead { // to whom nothing is written, which would tell when they have gone
@@ -34,8 +38,7 @@ func (p *Page) stream(w http.ResponseWriter, r *http.Request) {
 	}
 	if p.streams.Add(1) > mostStreams {
 		p.streams.Add(-1)
-		w.Header().Set("Retry-After", "15")
-		http.Error(w, fmt.Sprintf("%d pages follow the figures already, which are all that may; load the page again to see the present ones", mostStreams), http.StatusServiceUnavailable)
+		answer.Refuse(w, http.StatusServiceUnavailable, fmt.Sprintf("%d pages follow the figures already, which are all that may; load the page again to see the present ones", mostStreams))
 		return
 	}
 	defer p.streams.Add(-1)
@@ -68,6 +71,19 @@ func (p *Page) stream(w http.ResponseWriter, r *http.Request) {
 			return
 		}
 	}
+}
+
+// unitsOf reads the units of a stream, which has no other parameters.
+func (p *Page) unitsOf(v url.Values) (shown.Units, error) {
+	for name, texts := range v {
+		switch {
+		case !slices.Contains(shown.Kinds(), name):
+			return p.usual, answer.Wrongf("%s is no parameter; known: %s", name, strings.Join(shown.Kinds(), ", "))
+		case len(texts) != 1:
+			return p.usual, answer.Wrongf("%s is given %d times", name, len(texts))
+		}
+	}
+	return shown.Choose(v, p.usual)
 }
 
 // sender writes events as they come, each of which must be taken within streamStall.
