@@ -99,7 +99,7 @@
   }
   if (form) {
     form.addEventListener("input", filter);
-    form.querySelector("button").hidden = true; // it filters as one types
+    form.querySelector("button").hidden = before === 0; // it filters as one types what is on the sheet
   }
 
   // The link to the agent.
@@ -160,13 +160,17 @@
     const wanted = [...inSight].filter((el) => drawn.get(el) !== minute && !el.hidden).slice(0, 50);
     if (asking || wanted.length === 0) return;
     asking = true;
+    let more = false;
     try {
       const q = new URLSearchParams(wanted.map((el) => ["load", el.dataset.load]));
       const answer = await fetch("/ribbons?" + q);
-      if (answer.ok) put(await answer.json(), wanted, minute);
+      if (answer.ok) {
+        put(await answer.json(), wanted, minute);
+        more = wanted.length === 50;
+      }
     } catch { /* the link is lost, which is told already */ }
     asking = false;
-    if (wanted.length === 50) ask();
+    if (more) ask();
   }
   function put(all, wanted, minute) {
     for (const el of wanted) {
