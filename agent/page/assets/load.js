@@ -166,6 +166,7 @@
       }
       const plot = new uPlot(options(kind, kind === "duty" ? 260 : 170, scale), columns, figure);
       plot.over.addEventListener("click", () => {
+        if (matchMedia("(pointer: coarse)").matches) return; // a touch chooses the point; the link below leads on
         if (plot.cursor.idx !== null && plot.cursor.idx !== undefined) location.assign(minute(plot.cursor.idx));
       });
       charts.push({ kind, scale, plot });
