@@ -21,14 +21,23 @@
   }
 
   const inSight = new Set(); // bands
-  // draw puts the fields of a band where they belong: duty, ±, expected, allowance.
+  const has = (text) => text !== "" && text !== "–";
+
+  // say puts the figures of a band into words, in sight or not: who listens or searches is
+  // to find those of now.
+  function say(x) {
+    const [duty, pm, expected, allowed] = x.fields;
+    x.duty.textContent = duty;
+    x.pm.textContent = has(pm) ? " ± " + pm : "";
+    x.line.setAttribute("aria-label", !has(duty) ? "no duty" : duty + (has(pm) ? " ± " + pm : "") + " " + x.unit + (has(expected) ? `, expected ${expected}, allowed ± ${allowed}` : ""));
+    if (inSight.has(x.el)) draw(x); else x.stale = true; // until it comes in sight
+  }
+
+  // draw puts them on the duty line: duty, ±, expected, allowance.
   function draw(x) {
     const [duty, pm, expected, allowed] = x.fields;
     x.stale = false;
     const at = (v) => (100 * Math.min(1, Math.max(0, (v - x.low) / (x.high - x.low)))).toFixed(2) + "%";
-    const has = (text) => text !== "" && text !== "–";
-    x.duty.textContent = duty;
-    x.pm.textContent = has(pm) ? " ± " + pm : "";
     x.lens.toggleAttribute("hidden", !has(duty));
     if (has(duty)) {
       x.lens.setAttribute("cx", at(+duty));
@@ -40,8 +49,8 @@
       x.a.setAttribute("x", at(+expected - +allowed));
       x.b.setAttribute("x", at(+expected + +allowed));
     }
-    x.line.setAttribute("aria-label", !has(duty) ? "no duty" : duty + (has(pm) ? " ± " + pm : "") + " " + x.unit + (has(expected) ? `, expected ${expected}, allowed ± ${allowed}` : ""));
   }
+  addEventListener("beforeprint", () => { for (const x of bands.values()) if (x.stale) draw(x); });
 
   // figures reads the data of a nameless event.
   function figures(data) {
@@ -52,7 +61,7 @@
       const x = bands.get(i++);
       if (!x || record === "") continue;
       record.split(" ").forEach((text, k) => { if (text !== "") x.fields[k] = text === "-" ? (k === 0 ? "–" : "") : text; });
-      if (inSight.has(x.el)) draw(x); else x.stale = true; // until it comes in sight
+      say(x);
     }
     return +at;
   }
