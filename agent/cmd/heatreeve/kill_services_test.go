@@ -105,7 +105,12 @@ func stream(rng *rand.Rand, base int64, seconds int) []reading {
 // publisher is one client, so that the broker has the readings in one order.
 func (b *broker) publisher(t *testing.T) mqtt.Client {
 	t.Helper()
-	c := mqtt.NewClient(mqtt.NewClientOptions().AddBroker(fmt.Sprintf("tcp://127.0.0.1:%d", b.port)).SetClientID("publisher"))
+	return b.publisherAs(t, "publisher")
+}
+
+func (b *broker) publisherAs(t *testing.T, id string) mqtt.Client {
+	t.Helper()
+	c := mqtt.NewClient(mqtt.NewClientOptions().AddBroker(fmt.Sprintf("tcp://127.0.0.1:%d", b.port)).SetClientID(id))
 	if token := c.Connect(); !token.WaitTimeout(patience) || token.Error() != nil {
 		t.Fatalf("publisher: %v", token.Error())
 	}
