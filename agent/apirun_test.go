@@ -2,6 +2,7 @@ package agent_test
 
 import (
 	"bytes"
+	"compress/gzip"
 	"context"
 	"encoding/json"
 	"io"
@@ -181,6 +182,7 @@ func TestInterface(t *testing.T) {
 	f.check(t, "/api/v1/export?tag=CT-1&load=hot-water", "400", nil)
 	f.pages(t)
 	f.validators(t)
+	f.coding(t)
 	happened(t, data)
 	cancel()
 	if err := <-published; err != nil {
@@ -285,6 +287,23 @@ func (f *interfaced) validators(t *testing.T) {
 	resp, _ := f.ask(t, path, nil)
 	f.check(t, path, "304", http.Header{"If-None-Match": {`"another", ` + resp.Header.Get("ETag")}})
 	f.check(t, path, "200", http.Header{"If-None-Match": {`"another"`}})
+}
+
+// coding asks for gzip, and then again with the validator of that.
+func (f *interfaced) coding(t *testing.T) {
+	t.Helper()
+	const path = "/api/v1/openapi.json"
+	zipped := http.Header{"Accept-Encoding": {"gzip"}}
+	resp, body := f.ask(t, path, zipped)
+	z, err := gzip.NewReader(bytes.NewReader(body))
+	if err != nil {
+		t.Fatalf("%v: %v", resp.Header, err)
+	}
+	if text, err := io.ReadAll(z); err != nil || !bytes.Equal(text, page.OpenAPI()) || 3*len(body) > len(text) {
+		t.Errorf("%d bytes for %d, %v", len(body), len(text), err)
+	}
+	f.check(t, path, "304", http.Header{"Accept-Encoding": {"gzip"}, "If-None-Match": {resp.Header.Get("ETag")}})
+	f.check(t, path, "200", http.Header{"If-None-Match": {resp.Header.Get("ETag")}})
 }
 
 // happened has the command line follow the pages.

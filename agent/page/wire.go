@@ -5,6 +5,7 @@ import (
 	"crypto/sha256"
 	"encoding/base64"
 	"net/http"
+	"strconv"
 )
 
 // Answer writes a whole answer of a kind, as a media type names it: with a strong validator, made of
@@ -24,6 +25,7 @@ func Answer(w http.ResponseWriter, r *http.Request, kind string, body []byte) {
 		body, tag = packedUp(body), tag[:len(tag)-1]+`-gzip"` // another validator (RFC 9110, 8.8.3.3)
 	}
 	h.Set("ETag", tag)
+	h.Set("Content-Length", strconv.Itoa(len(body)))
 	c := &conditional{ResponseWriter: w, have: r.Header.Values("If-None-Match")}
 	_, _ = c.Write(body) // who asked has gone
 }
