@@ -52,15 +52,24 @@ func dateFieldOf(name, text string) dateField {
 
 // account answers with the account of a time, to be read or printed.
 func (p *Page) account(w http.ResponseWriter, r *http.Request) {
-	v := r.URL.Query()
+	status, body, err := p.accountText(r)
+	if status == http.StatusServiceUnavailable {
+		w.Header().Set("Retry-After", "5")
+	}
+	send(w, r, status, body, err)
+}
+
+func (p *Page) accountText(r *http.Request) (status int, body []byte, err error) {
 	x := accountPage{frame: p.frameOf(r, "Account", accountParameters...), Made: p.Now().In(p.Site.Zone)}
 	x.Look = append(x.Look, "account.css")
-	q, err := p.accountQuery(v)
+	q, err := p.accountQuery(r.URL.Query())
 	var report *answer.Report
 	if err == nil {
-		report, err = p.accountReport(r.Context(), &q)
+		var leave func()
+		report, leave, err = p.oneAccount(r.Context(), &q)
+		defer leave()
 	}
-	status := http.StatusOK
+	status = http.StatusOK
 	switch {
 	case errors.Is(err, answer.ErrNoRecord) && q.usual:
 		x.Empty = err.Error()
@@ -69,15 +78,27 @@ func (p *Page) account(w http.ResponseWriter, r *http.Request) {
 	case x.Fault != "":
 		status = http.StatusBadRequest
 	}
-	if status == http.StatusServiceUnavailable {
-		w.Header().Set("Retry-After", "5")
-	}
 	x.Form = p.accountForm(&q)
 	x.Ways = p.accountWays(&x.frame, q.Loads)
 	if report != nil {
 		x.fill(&q, report)
 	}
-	p.render(w, r, status, "account.html", &x)
+	body, err = p.text("account.html", &x)
+	return status, body, err
+}
+
+// oneAccount is the report for an account when its turn has come, and what gives the turn on: one
+// at a time is made, since until it is text an account takes many times the memory of that.
+func (p *Page) oneAccount(ctx context.Context, q *accountAsked) (r *answer.Report, leave func(), err error) {
+	ctx, cancel := context.WithTimeout(ctx, sheetWait)
+	defer cancel()
+	select {
+	case p.accounts <- struct{}{}:
+	case <-ctx.Done():
+		return nil, func() {}, ctx.Err()
+	}
+	r, err = p.accountReport(ctx, q)
+	return r, func() { <-p.accounts }, err
 }
 
 func (p *Page) accountForm(q *accountAsked) accountForm {
@@ -120,23 +141,30 @@ var legible = strings.NewReplacer("%3A", ":", "%2F", "/")
 
 // accountCSV answers with the same as CSV, as heatreeve report --format csv writes it.
 func (p *Page) accountCSV(w http.ResponseWriter, r *http.Request) {
-	q, err := p.accountQuery(r.URL.Query())
-	var report *answer.Report
-	if err == nil {
-		report, err = p.accountReport(r.Context(), &q)
-	}
-	var b bytes.Buffer
-	if err == nil {
-		err = report.CSV(&b, false)
-	}
+	name, body, err := p.accountTable(r)
 	if err != nil {
 		http.Error(w, faultText(err), statusOf(err))
 		return
 	}
 	w.Header().Set("Content-Type", "text/csv; charset=utf-8; header=present")
-	w.Header().Set("Content-Disposition", `attachment; filename="account-`+report.From.Format("2006-01-02")+`.csv"`)
+	w.Header().Set("Content-Disposition", `attachment; filename="`+name+`"`)
 	w.Header().Set("Cache-Control", "no-store")
-	_, _ = w.Write(b.Bytes()) // who asked has gone
+	_, _ = w.Write(body) // who asked has gone
+}
+
+func (p *Page) accountTable(r *http.Request) (name string, body []byte, err error) {
+	q, err := p.accountQuery(r.URL.Query())
+	if err != nil {
+		return "", nil, err
+	}
+	report, leave, err := p.oneAccount(r.Context(), &q)
+	defer leave()
+	if err != nil {
+		return "", nil, err
+	}
+	var b bytes.Buffer
+	err = report.CSV(&b, false)
+	return "account-" + report.From.Format("2006-01-02") + ".csv", b.Bytes(), err
 }
 
 // statusOf is how an error is answered.

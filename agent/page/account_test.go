@@ -4,10 +4,13 @@ import (
 	"context"
 	"fmt"
 	"net/http"
+	"net/http/httptest"
 	"net/url"
 	"slices"
 	"strings"
+	"sync/atomic"
 	"testing"
+	"testing/synctest"
 	"time"
 
 	"golang.org/x/net/html"
@@ -381,4 +384,34 @@ func BenchmarkAccount(b *testing.B) {
 		size = get(p, "/account?from=2026-01&by=hour").Body.Len()
 	}
 	b.ReportMetric(float64(size), "B/page")
+}
+
+// One account at a time is made; who would have to wait for long is told to ask again.
+func TestAccountsAreMadeOneAtATime(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p, source := mill(t, cooler())
+		free := make(chan struct{})
+		var asked atomic.Int32
+		source.report = func(answer.Query) (*answer.Report, error) {
+			asked.Add(1)
+			<-free
+			return twoDays(t), nil
+		}
+		first := make(chan *httptest.ResponseRecorder)
+		go func() { first <- get(p, "/account?from=2026-10") }()
+		synctest.Wait()
+		for _, path := range []string{"/account?from=2026-10", "/account.csv?from=2026-10"} {
+			w := get(p, path)
+			if w.Code != http.StatusServiceUnavailable || !strings.Contains(w.Body.String(), "ask for a shorter time") {
+				t.Errorf("%s meanwhile: %d", path, w.Code)
+			}
+		}
+		close(free)
+		if w := <-first; w.Code != http.StatusOK || asked.Load() != 1 {
+			t.Errorf("the first: %d, after %d reports", w.Code, asked.Load())
+		}
+		if w := get(p, "/account.csv?from=2026-10"); w.Code != http.StatusOK || asked.Load() != 2 {
+			t.Errorf("the next: %d, after %d reports", w.Code, asked.Load())
+		}
+	})
 }

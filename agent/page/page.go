@@ -11,6 +11,7 @@ import (
 	"bytes"
 	"embed"
 	"encoding/hex"
+	"fmt"
 	"html/template"
 	"net/http"
 	"net/url"
@@ -33,11 +34,12 @@ type Page struct {
 	feed      feed
 	streams   atomic.Int64 // that are open
 	ribbons   ribbons
+	accounts  chan struct{} // holds one while an account is in the making
 }
 
 // New returns the page of a site.
 func New(source Source, o Options) (*Page, error) {
-	p := &Page{Source: source, Options: o, usual: o.Site.Shown}
+	p := &Page{Source: source, Options: o, usual: o.Site.Shown, accounts: make(chan struct{}, 1)}
 	p.feed.init()
 	p.ribbons.init()
 	t, err := template.New("").Funcs(template.FuncMap{"spaced": spaced}).ParseFS(templateFiles, "templates/*.html")
@@ -128,19 +130,33 @@ func spaced(text string) string { return strings.Join(strings.Fields(text), " ")
 
 // render writes a page, whole or not at all.
 func (p *Page) render(w http.ResponseWriter, r *http.Request, status int, name string, data any) {
+	body, err := p.text(name, data)
+	send(w, r, status, body, err)
+}
+
+// text is a page as it is sent.
+func (p *Page) text(name string, data any) ([]byte, error) {
 	var b bytes.Buffer
 	if err := p.templates.ExecuteTemplate(&b, name, data); err != nil {
-		http.Error(w, "page "+name+": "+err.Error(), http.StatusInternalServerError)
+		return nil, fmt.Errorf("page %s: %w", name, err)
+	}
+	return b.Bytes(), nil
+}
+
+// send writes a page, or why there is none.
+func send(w http.ResponseWriter, r *http.Request, status int, body []byte, err error) {
+	if err != nil {
+		http.Error(w, err.Error(), http.StatusInternalServerError)
 		return
 	}
 	w.Header().Set("Cache-Control", "no-store")
 	if status == http.StatusOK {
-		Answer(w, r, "text/html; charset=utf-8", b.Bytes())
+		Answer(w, r, "text/html; charset=utf-8", body)
 		return
 	}
 	w.Header().Set("Content-Type", "text/html; charset=utf-8")
 	w.WriteHeader(status)
-	_, _ = w.Write(b.Bytes()) // who asked has gone
+	_, _ = w.Write(body) // who asked has gone
 }
 
 // UnitFields are the parameters of the units, for a form that keeps them.
