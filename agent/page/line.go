@@ -78,8 +78,25 @@ func stepOf(span float64) float64 {
 func (x *line) ticks(u shown.Units) {
 	step := stepOf(x.High - x.Low)
 	decimals := max(0, -int(math.Floor(math.Log10(step)+1e-9)))
-	for k := math.Ceil(x.Low/step - 1e-9); k*step <= x.High*(1+1e-9)+1e-12; k++ {
-		x.Ticks = append(x.Ticks, tick{x.at(k * step / x.toReader), shown.Rounded(k*step, decimals)})
+	first, longest := math.Ceil(x.Low/step-1e-9), 0
+	for k := first; k*step <= x.High*(1+1e-9)+1e-12; k++ {
+		text := shown.Rounded(k*step, decimals)
+		x.Ticks, longest = append(x.Ticks, tick{x.at(k * step / x.toReader), text}), max(longest, len(text))
+	}
+	x.thin(int(first), longest+1)
+}
+
+// telephoneDigits stand side by side below a line on a screen of 360 px.
+const telephoneDigits = 40
+
+// thin leaves marks without a figure between those with one, where figures of so many digits
+// would run into each other. The first mark is so many steps from zero, which keeps its figure.
+func (x *line) thin(first, digits int) {
+	every := 1 + (len(x.Ticks)*digits-1)/telephoneDigits
+	for i := range x.Ticks {
+		if (first+i)%every != 0 {
+			x.Ticks[i].Text = ""
+		}
 	}
 }
 

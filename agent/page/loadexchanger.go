@@ -89,8 +89,13 @@ func (s *loadSheet) conductance() unit.Unit {
 	return s.customary(unit.Conductance, "kW/K", "Btu/(h °F)")
 }
 
+// resistance is for plates of kilowatts: h °F/Btu would leave them no digits.
 func (s *loadSheet) resistance() unit.Unit {
-	return s.customary(unit.HeatResistance, "K/kW", "h °F/Btu")
+	u := s.customary(unit.HeatResistance, "K/kW", "h °F/Btu")
+	if s.fahrenheit() {
+		u.Symbol, u.Factor = "h °F/MMBtu", u.Factor/1e6
+	}
+	return u
 }
 
 // customary is the unit of a quantity that goes with the temperatures that the reader chose.

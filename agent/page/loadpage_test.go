@@ -107,7 +107,7 @@ func TestCourseInOtherUnits(t *testing.T) {
 	page := parsed(t, sheetOf(t, newFakePlant(t), "hot-water", "duty=kBtu/h&temperature=°F&flow=lb/h"))
 	tells(t, byID(t, page, "course"), "duty 2030 2063 2102 34 kBtu/h", "inlet 266.00 266.00 266.00 0.85 °F", "lb/h")
 	tells(t, byID(t, page, "cp"), "Btu/(lb °F)", "101.5 psi absolute", "194.00")
-	tells(t, byID(t, page, "exchanger"), "Btu/(h °F)", "h °F/Btu")
+	tells(t, byID(t, page, "exchanger"), "Btu/(h °F)", "h °F/MMBtu")
 	tells(t, byID(t, page, "working"), "serves 2089 ± 34 kBtu/h")
 }
 

@@ -2,11 +2,13 @@ package page
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 	"testing"
 	"time"
 
 	"heatreeve/agent/answer"
+	"heatreeve/agent/shown"
 	"heatreeve/agent/view"
 )
 
@@ -114,5 +116,27 @@ func TestLineIsToScale(t *testing.T) {
 	n := now{figure: back.Figure}
 	if l := lineOf(&n, &back, p.usual); l.Low != -60 || l.High != 0 || l.Lens != "80.00%" || l.Zero != "100.00%" {
 		t.Errorf("of a duty the other way: %+v", l)
+	}
+}
+
+// Long figures leave marks without one between them, so that they stand apart on a telephone.
+func TestLineHasRoomForItsFigures(t *testing.T) {
+	l := view.Load{Name: "x", Design: -640e3, Allow: 0.08}
+	n := now{figure: l.Figure}
+	for unit, want := range map[string][]string{
+		"kW":    {"-1000", "-800", "-600", "-400", "-200", "0"},
+		"Btu/h": {"-3000000", "", "-2000000", "", "-1000000", "", "0"},
+	} {
+		u := shown.Usual()
+		if err := u.Set("duty", unit); err != nil {
+			t.Fatal(err)
+		}
+		var got []string
+		for _, tick := range lineOf(&n, &l, u).Ticks {
+			got = append(got, tick.Text)
+		}
+		if !slices.Equal(got, want) {
+			t.Errorf("%s: %q, want %q", unit, got, want)
+		}
 	}
 }
