@@ -78,6 +78,14 @@ func (b *browser) hostile(t *testing.T) {
 	if want := slices.Sorted(slices.Values(hostileNames)); !slices.Equal(names, want) {
 		t.Errorf("the bands are called\n%q\nwant\n%q", names, want)
 	}
+	links := eval[map[string]string](x, `Object.fromEntries([...document.querySelectorAll(".band")].map(b => [b.querySelector("h3").textContent, b.querySelector("h3 a").getAttribute("href")]))`)
+	for _, name := range hostileNames {
+		x.open(links[name])
+		x.harmless(links[name])
+		if h := eval[string](x, `document.querySelector("h1").textContent`); !strings.Contains(h, name) {
+			t.Errorf("the sheet of %q is headed %q", name, h)
+		}
+	}
 	eventually(t, "there is an account", func() error { _, err := a.get("/account"); return err })
 	x.open("/account")
 	x.harmless("/account")

@@ -66,6 +66,7 @@ func startDemo(t *testing.T, speed string, more ...string) *agentUnderTest {
 // pages are one of each kind, of the demo.
 var pages = map[string]string{
 	"loads":   "/",
+	"load":    "/loads/hot-water",
 	"account": "/account",
 }
 
