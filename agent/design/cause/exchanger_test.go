@@ -247,6 +247,22 @@ func TestFouledAsTheDaysBefore(t *testing.T) {
 	}
 }
 
+// Days that are alike to the watt make any change stand out; an instrument that is off by less than
+// it is stated to be sure to is not at fault all the same.
+func TestTriflesAreNoFault(t *testing.T) {
+	s := states[0]
+	e := gathered(settled(s.hot, s.cold, s.T1, s.t1, clean(s.hot, s.cold)), nil)
+	e.Exchanger.Signalled, e.Exchanger.Since = true, 11
+	for day := range 12 {
+		e.Exchanger.Days = append(e.Exchanger.Days, Day{Day: int64(day), Conductance: Estimate{true, 0, 1e-5}, Closure: Estimate{true, 40 * float64(day/11), 1}})
+	}
+	for _, c := range Rank(e) {
+		if slices.Contains([]Kind{FlowMeter, InletSensor, OutletSensor}, c.Kind) {
+			t.Errorf("%s: %s", c.Kind, c.Says)
+		}
+	}
+}
+
 // Evidence of the two sides put together tells the same as that of six readings, and has the
 // tests and marks of both.
 func TestBeside(t *testing.T) {

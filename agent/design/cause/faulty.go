@@ -15,6 +15,9 @@ func (e *Evidence) faulty(iso *isolation, faults []fault) (causes []Cause, misre
 	}
 	found := e.fits(iso, faults)
 	for i, f := range found {
+		if f.trifling() {
+			continue
+		}
 		share, known := e.share(f)
 		weight := significance * f.explains * f.likelihood
 		if known {
@@ -40,6 +43,13 @@ func (e *Evidence) faulty(iso *isolation, faults []fault) (causes []Cause, misre
 	}
 	return causes, misread
 }
+
+// sureEnough is the part of its stated standard uncertainty by what lasts within which nobody
+// calls an instrument at fault. Common practice, no source.
+const sureEnough = 0.25
+
+// trifling tells that an instrument is off by less than it is stated to be sure to.
+func (f *found) trifling() bool { return !f.isDesign && math.Abs(f.size) < sureEnough*f.lasting }
 
 // fits lists the faults that explain something, with their likelihood beside the likeliest.
 func (e *Evidence) fits(iso *isolation, faults []fault) []found {
