@@ -55,7 +55,7 @@ func presentOf(s *view.Snapshot, now int64, place *time.Location, q answer.Loads
 func presentLoad(s *view.Snapshot, i int, now int64, place *time.Location) answer.Present {
 	l := &s.Loads[i]
 	f, verdict := s.Current(i, now)
-	p := answer.Present{Load: l.Name, Verdict: verdict.String(), Quality: f.Quality().String(), Remark: remark(&f), Register: totalsOf(l.Booked)}
+	p := answer.Present{Load: l.Name, Verdict: verdict.String(), Quality: f.Quality().String(), Remark: f.Beside(), Register: totalsOf(l.Booked)}
 	if f.At != 0 {
 		at := time.Unix(0, f.At).In(place)
 		p.At = &at
@@ -85,12 +85,4 @@ func totalsOf(t loads.Totals) answer.Register {
 		Given: t.Given, Taken: t.Taken, BridgedGiven: t.BridgedGiven, BridgedTaken: t.BridgedTaken,
 		Measured: seconds(t.Measured), Bridged: seconds(t.Bridged), Missing: seconds(t.Missing), Uncertain: seconds(t.Uncertain),
 	}
-}
-
-// remark is why there is no figure, or what to bear in mind with it.
-func remark(f *loads.Figure) string {
-	if d := f.Doubt(); d != "" && f.Note != "" {
-		return d + "; " + f.Note
-	}
-	return cmp.Or(f.Reason, f.Doubt(), f.Note)
 }

@@ -1,6 +1,7 @@
 package loads
 
 import (
+	"cmp"
 	"fmt"
 
 	"heatreeve/ingest/quality"
@@ -105,6 +106,15 @@ func (f *Figure) Doubt() string {
 		return ""
 	}
 	return fmt.Sprintf("tag %q is %v: %v", f.By, f.Mark.Quality(), f.Mark)
+}
+
+// Beside is why there is no figure, or what to bear in mind with one; it is empty where there is
+// nothing to say.
+func (f *Figure) Beside() string {
+	if d := f.Doubt(); d != "" && f.Note != "" {
+		return d + "; " + f.Note
+	}
+	return cmp.Or(f.Reason, f.Doubt(), f.Note)
 }
 
 // uncertain reports whether the time of a measured figure is uncertain.

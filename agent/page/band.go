@@ -1,7 +1,6 @@
 package page
 
 import (
-	"cmp"
 	"fmt"
 	"math"
 
@@ -29,7 +28,7 @@ type now struct {
 func nowOf(s *view.Snapshot, i int, at int64, u shown.Units) now {
 	l := &s.Loads[i]
 	f, verdict := s.Current(i, at)
-	n := now{figure: f, verdict: verdict, Verdict: verdict.String(), Duty: shown.None, Note: remark(&f)}
+	n := now{figure: f, verdict: verdict, Verdict: verdict.String(), Duty: shown.None, Note: f.Beside()}
 	switch {
 	case f.Measured() && f.Idle:
 		n.Duty = "0"
@@ -40,14 +39,6 @@ func nowOf(s *view.Snapshot, i int, at int64, u shown.Units) now {
 		n.Expected, n.Allowed = shown.Figure(u.Duty, l.Design, math.Abs(l.Allow*l.Design))
 	}
 	return n
-}
-
-// remark is why there is no figure, or what to bear in mind with it.
-func remark(f *loads.Figure) string {
-	if d := f.Doubt(); d != "" && f.Note != "" {
-		return d + "; " + f.Note
-	}
-	return cmp.Or(f.Reason, f.Doubt(), f.Note)
 }
 
 // band is a load on the sheet.
