@@ -48,6 +48,7 @@ func New(source Source, o Options) (*Page, error) {
 	}
 	p.templates = t
 	p.mux = http.NewServeMux()
+	p.mux.HandleFunc("GET /", p.lost)
 	p.mux.HandleFunc("GET /{$}", p.sheet)
 	p.mux.HandleFunc("GET /loads/{load}", p.oneLoad)
 	p.mux.HandleFunc("GET /account", p.account)
@@ -60,6 +61,13 @@ func New(source Source, o Options) (*Page, error) {
 }
 
 func (p *Page) ServeHTTP(w http.ResponseWriter, r *http.Request) { p.mux.ServeHTTP(w, r) }
+
+// lost answers at an address that is none of a page.
+func (p *Page) lost(w http.ResponseWriter, r *http.Request) {
+	f := p.frameOf(r, "Not found")
+	f.Script, f.Fault = nil, fmt.Sprintf("There is no page at %q.", r.URL.Path)
+	p.render(w, r, http.StatusNotFound, "lost.html", &f)
+}
 
 // frame is what all pages have around their content.
 type frame struct {

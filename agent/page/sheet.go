@@ -2,6 +2,7 @@ package page
 
 import (
 	"cmp"
+	"fmt"
 	"math"
 	"net/http"
 	"slices"
@@ -168,8 +169,8 @@ func (p *Page) loadIndex(name string) int {
 	return -1
 }
 
-// faults are what keeps the agent from its work, and what the broker had kept of tags that have
-// said nothing since.
+// faults are what keeps the agent from its work, what the broker had kept of tags that have
+// said nothing since, and tags of which all was refused.
 func faults(s *view.Snapshot) (all []string) {
 	for _, b := range s.AllBrokers() {
 		if !b.Connected {
@@ -183,6 +184,38 @@ func faults(s *view.Snapshot) (all []string) {
 		if t := &s.Tags[i]; t.Kept != "" {
 			all = append(all, t.Name+": the broker had kept "+t.Kept+", of an age that nobody knows; it is in no figure")
 		}
+	}
+	return append(all, refused(s.Tags)...)
+}
+
+// refusedTold is how many tags are named of which all was refused: with a wrong clock it is
+// every tag of a plant.
+const refusedTold = 5
+
+// refused tells the tags that have sent, but nothing that could be used.
+func refused(tags []view.Tag) (all []string) {
+	more := 0
+	for i := range tags {
+		t := &tags[i]
+		if t.Newest != 0 || t.Accepted > 0 {
+			continue
+		}
+		var reasons []string
+		for _, r := range t.Refused {
+			if r.Count > 0 {
+				reasons = append(reasons, fmt.Sprintf("%d %s", r.Count, r.Reason))
+			}
+		}
+		switch {
+		case len(reasons) == 0:
+		case len(all) < refusedTold:
+			all = append(all, t.Name+": all that came was refused ("+strings.Join(reasons, ", ")+"); the log tells an example")
+		default:
+			more++
+		}
+	}
+	if more > 0 {
+		all = append(all, fmt.Sprintf("of %d more tags all that came was refused", more))
 	}
 	return all
 }

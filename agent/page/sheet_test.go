@@ -3,6 +3,7 @@ package page
 import (
 	"context"
 	"errors"
+	"fmt"
 	"html"
 	"math"
 	"net/http"
@@ -99,12 +100,16 @@ func TestSheetTellsEachLoad(t *testing.T) {
 	short.Name, short.Verdict = "kiln", design.Short
 	p, source := mill(t, cooler(), hall(), doubted, short)
 	source.snapshot.Tags = []view.Tag{{Name: "TT-8", Newest: 1}, {Name: "TT-9", Kept: "21.5 °C"}}
+	for i := range refusedTold + 2 {
+		source.snapshot.Tags = append(source.snapshot.Tags, view.Tag{Name: fmt.Sprintf("FT-%d", i), Refused: []view.Refusal{{Reason: "empty"}, {Reason: "ahead", Count: 20}}})
+	}
 	source.snapshot.History.Fault = "no space left"
 	w := get(p, "/")
 	text := words(w.Body.String())
 	for _, want := range []string{
 		"hall blind – kW takes heat", "TT-1 is old", "cooler holding 40.80 ± 0.70 kW gives heat", "sensible part only: coil",
-		`tag "TT-2" is uncertain: stuck; sensible part only: coil`, "TT-9: the broker had kept 21.5 °C, of an age that nobody knows", "history: no space left", "No safety function.",
+		`tag "TT-2" is uncertain: stuck; sensible part only: coil`, "TT-9: the broker had kept 21.5 °C, of an age that nobody knows", "history: no space left",
+		"FT-0: all that came was refused (20 ahead); the log tells an example", "of 2 more tags all that came was refused", "No safety function.",
 	} {
 		if !strings.Contains(text, want) {
 			t.Errorf("%q is not on the sheet: %s", want, text)
@@ -133,6 +138,15 @@ func TestSheetIsBlindWhenInputsRunOut(t *testing.T) {
 	source.now = noon.Add(1)
 	if text := words(get(p, "/").Body.String()); !strings.Contains(text, "cooler blind –") || strings.Contains(text, "40.80") {
 		t.Errorf("out of age: %s", text)
+	}
+}
+
+// An address of no page leads back to those that there are.
+func TestLostIsToldWhereToGo(t *testing.T) {
+	p, _ := mill(t, cooler())
+	w := get(p, "/loads?duty=MW")
+	if body := w.Body.String(); w.Code != http.StatusNotFound || !strings.Contains(words(body), `There is no page at "/loads".`) || !strings.Contains(body, `href="/account?duty=MW"`) {
+		t.Errorf("%d: %s", w.Code, body)
 	}
 }
 

@@ -18,7 +18,9 @@ func (r *reader) readLoads(o object) {
 	es := v.entries()
 	v.emptyMapping("at least one load")
 	for _, e := range es {
-		e.key.label(e.name)
+		if e.key.label(e.name) && (e.name == "." || e.name == "..") {
+			e.key.fault("the name %q cannot stand in an address", e.name)
+		}
 		r.site.Loads = append(r.site.Loads, r.load(e))
 	}
 }
