@@ -41,8 +41,8 @@ func (d *desk) Explain(ctx context.Context, q answer.Explanation) (*working.Work
 }
 
 // Events implements [page.Source].
-func (d *desk) Events(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
-	return inTurn(ctx, d.turn, func(ctx context.Context) (*answer.Events, error) { return d.reports.history.events(ctx, q) })
+func (d *desk) Events(ctx context.Context, q answer.EventQuery, tell func(*answer.Event)) (int, error) {
+	return inTurn(ctx, d.turn, func(ctx context.Context) (int, error) { return d.reports.history.eachEvent(ctx, q, tell) })
 }
 
 // Series implements [page.Source].
@@ -51,7 +51,7 @@ func (d *desk) Series(ctx context.Context, q answer.SeriesQuery) (*answer.Series
 }
 
 // inTurn asks once the turn has come.
-func inTurn[T any](ctx context.Context, t chan struct{}, ask func(context.Context) (*T, error)) (*T, error) {
+func inTurn[T any](ctx context.Context, t chan struct{}, ask func(context.Context) (T, error)) (x T, err error) {
 	ctx, cancel := context.WithTimeout(ctx, deskWait)
 	defer cancel()
 	select {
@@ -59,6 +59,6 @@ func inTurn[T any](ctx context.Context, t chan struct{}, ask func(context.Contex
 		defer func() { <-t }()
 		return ask(ctx)
 	case <-ctx.Done():
-		return nil, ctx.Err()
+		return x, ctx.Err()
 	}
 }

@@ -48,17 +48,43 @@ func spanOf(q *answer.EventQuery, zone *time.Location) (from, to int64, err erro
 	return from, to, nil
 }
 
-// events answers q.
-func (h *history) events(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
-	zone := h.zone
+// eventTime is the zone and the time that q asks for.
+func (h *history) eventTime(q *answer.EventQuery) (zone *time.Location, from, to int64, err error) {
+	zone = h.zone
 	if zone == nil && q.Zone == "" {
 		zone = time.UTC
 	}
-	zone, err := placeOf(q.Zone, zone)
-	if err != nil {
-		return nil, err
+	if zone, err = placeOf(q.Zone, zone); err != nil {
+		return nil, 0, 0, err
 	}
-	from, to, err := spanOf(&q, zone)
+	from, to, err = spanOf(q, zone)
+	return zone, from, to, err
+}
+
+// eachEvent tells all events of the time that q asks for, and how many records of it cannot be
+// read; it keeps none.
+func (h *history) eachEvent(ctx context.Context, q answer.EventQuery, tell func(*answer.Event)) (unused int, err error) {
+	zone, from, to, err := h.eventTime(&q)
+	if err != nil {
+		return 0, err
+	}
+	for e, err := range h.db.Events(from, to) {
+		switch {
+		case ctx.Err() != nil:
+			return unused, ctx.Err()
+		case err != nil:
+			unused++
+		default:
+			told := toldEvent(&e, zone)
+			tell(&told)
+		}
+	}
+	return unused, nil
+}
+
+// events answers q.
+func (h *history) events(ctx context.Context, q answer.EventQuery) (*answer.Events, error) {
+	zone, from, to, err := h.eventTime(&q)
 	if err != nil {
 		return nil, err
 	}

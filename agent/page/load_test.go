@@ -47,9 +47,15 @@ func (p *fakePlant) Explain(_ context.Context, q answer.Explanation) (*working.W
 	return p.working, p.fault
 }
 
-func (p *fakePlant) Events(_ context.Context, q answer.EventQuery) (*answer.Events, error) {
+func (p *fakePlant) Events(_ context.Context, q answer.EventQuery, tell func(*answer.Event)) (int, error) {
 	p.asked = append(p.asked, q)
-	return p.events, p.fault
+	if p.fault != nil {
+		return 0, p.fault
+	}
+	for i := range p.events.Events {
+		tell(&p.events.Events[i])
+	}
+	return p.events.Unused, nil
 }
 
 func (p *fakePlant) Series(_ context.Context, q answer.SeriesQuery) (*answer.Series, error) {

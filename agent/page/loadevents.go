@@ -31,30 +31,54 @@ func (s *loadSheet) events(ctx context.Context) *eventsPart {
 		q.To = s.address.end(s.now).Format(addressMinute)
 	}
 	p := &eventsPart{}
-	all, err := s.source.Events(ctx, q)
+	newest := newestOf{subjects: s.subjects()}
+	unused, err := s.source.Events(ctx, q, newest.take)
 	if err != nil {
 		p.Fault = why(err)
 		return p
 	}
-	subjects := s.subjects()
-	var own []answer.Event
-	for i := range all.Events {
-		if e := &all.Events[i]; e.Subject == "" || slices.Contains(subjects, e.Subject) {
-			own = append(own, *e)
-		}
+	own := newest.all()
+	if newest.left > 0 {
+		p.More = strconv.Itoa(newest.left) + " earlier ones are left out; choose a shorter time."
 	}
-	slices.Reverse(own)
-	if n := len(own) - mostEvents; n > 0 {
-		p.More = strconv.Itoa(n) + " earlier ones are left out; choose a shorter time."
-		own = own[:mostEvents]
-	}
-	if all.Unused > 0 {
-		p.Unused = strconv.Itoa(all.Unused) + " records of what happened cannot be used."
+	if unused > 0 {
+		p.Unused = strconv.Itoa(unused) + " records of what happened cannot be used."
 	}
 	for i := range own {
 		p.Rows = append(p.Rows, s.eventRow(&own[i]))
 	}
 	return p
+}
+
+// newestOf keeps the newest events of some subjects, and of none, and counts those before.
+type newestOf struct {
+	subjects []string
+	kept     []answer.Event
+	left     int
+}
+
+func (x *newestOf) take(e *answer.Event) {
+	if e.Subject != "" && !slices.Contains(x.subjects, e.Subject) {
+		return
+	}
+	if len(x.kept) == 2*mostEvents {
+		x.cut()
+	}
+	x.kept = append(x.kept, *e)
+}
+
+// cut leaves no more than are shown.
+func (x *newestOf) cut() {
+	n := max(0, len(x.kept)-mostEvents)
+	x.left += n
+	x.kept = slices.Delete(x.kept, 0, n)
+}
+
+// all are the events, newest first.
+func (x *newestOf) all() []answer.Event {
+	x.cut()
+	slices.Reverse(x.kept)
+	return x.kept
 }
 
 // subjects are whom events may tell of that matter to the load.

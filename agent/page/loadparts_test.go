@@ -267,3 +267,27 @@ func TestWords(t *testing.T) {
 		}
 	}
 }
+
+// However many events there are, the newest of the load's own are kept, and no more held than
+// twice as many.
+func TestNewestEvents(t *testing.T) {
+	for _, n := range []int{0, 1, mostEvents, mostEvents + 1, 2 * mostEvents, 2*mostEvents + 1, 777} {
+		x := newestOf{subjects: []string{"own"}}
+		for i := range n {
+			x.take(&answer.Event{At: midday.Add(time.Duration(i) * time.Second), Subject: "own"})
+			x.take(&answer.Event{At: midday, Subject: "another"})
+			if cap(x.kept) > 4*mostEvents {
+				t.Fatalf("room for %d events", cap(x.kept))
+			}
+		}
+		all := x.all()
+		if len(all) != min(n, mostEvents) || x.left != n-len(all) {
+			t.Errorf("of %d: %d, and %d left out", n, len(all), x.left)
+		}
+		for i := range all {
+			if want := midday.Add(time.Duration(n-1-i) * time.Second); !all[i].At.Equal(want) {
+				t.Errorf("of %d, place %d: %v, want %v", n, i, all[i].At, want)
+			}
+		}
+	}
+}

@@ -44,8 +44,8 @@ func (f *fixed) Report(_ context.Context, q answer.Query) (*answer.Report, error
 func (f *fixed) Explain(context.Context, answer.Explanation) (*working.Working, error) {
 	return nil, errNothing
 }
-func (f *fixed) Events(context.Context, answer.EventQuery) (*answer.Events, error) {
-	return nil, errNothing
+func (f *fixed) Events(context.Context, answer.EventQuery, func(*answer.Event)) (int, error) {
+	return 0, errNothing
 }
 func (f *fixed) Series(_ context.Context, q answer.SeriesQuery) (*answer.Series, error) {
 	if f.series == nil {

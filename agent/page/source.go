@@ -19,7 +19,9 @@ type Source interface {
 	Now() time.Time
 	Report(context.Context, answer.Query) (*answer.Report, error)
 	Explain(context.Context, answer.Explanation) (*working.Working, error)
-	Events(context.Context, answer.EventQuery) (*answer.Events, error)
+	// Events hands over what happened, one by one and by time, and counts the records that
+	// cannot be read.
+	Events(context.Context, answer.EventQuery, func(*answer.Event)) (unused int, err error)
 	Series(context.Context, answer.SeriesQuery) (*answer.Series, error)
 }
 
