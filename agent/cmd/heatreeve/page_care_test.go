@@ -68,6 +68,12 @@ func (x *tab) picture(width int64) []byte {
 	x.Helper()
 	x.size(width, eval[int64](x, "document.documentElement.scrollHeight"))
 	x.drawn()
+	return x.view()
+}
+
+// view is what the window shows, as a PNG.
+func (x *tab) view() []byte {
+	x.Helper()
 	picture, err := chromedp.Run(x.ctx, chromedp.CaptureScreenshot())
 	if err != nil {
 		x.Fatal(err)

@@ -13,6 +13,7 @@ import (
 	"maps"
 	"slices"
 	"testing"
+	"time"
 )
 
 var pictures = flag.String("pictures", "", "`DIR` into which TestPage puts the README's pictures of the demo; look at them before they are committed")
@@ -20,39 +21,45 @@ var pictures = flag.String("pictures", "", "`DIR` into which TestPage puts the R
 // pictureBytes is the most that a picture in the README may have.
 const pictureBytes = 120e3
 
-// portraits lets the demo run for more than a day, and takes the README's pictures of it while
-// a load is short.
+// portraits lets the demo run for a day, and takes the README's pictures of one that goes on
+// from there at a pace that can be followed.
 func (b *browser) portraits(t *testing.T, dir string) {
-	a := startDemo(t, "1440")
-	begun := a.value(t, "heatreeve_event_timestamp_seconds")
-	for passed := 0.0; passed < 27*3600; {
-		eventually(t, "the demo goes on", func() error {
-			now := a.value(t, "heatreeve_event_timestamp_seconds") - begun
-			if now < passed+3600 {
-				return fmt.Errorf("%g s have passed", now)
-			}
-			passed = now
-			return nil
-		})
-	}
+	data := t.TempDir()
+	t.Run("a day", func(t *testing.T) {
+		a := startDemo(t, "1440", "--data", data)
+		a.goesOn(t, 24*time.Hour)
+	})
+	a := startDemo(t, "60", "--data", data)
+	a.goesOn(t, 30*time.Minute)
 	x := b.tab(t, a.address)
-	for name, p := range map[string]struct {
-		path   string
-		height int64 // 0 for the whole page
-	}{"sheet-of-loads": {"/", 0}, "load": {"/loads/milk?span=1d", 1000}} {
-		x.scheme("light")
-		x.size(1120, 900)
-		x.open(p.path)
+	x.scheme("light")
+	for name, path := range map[string]string{"sheet-of-loads": "/", "load": "/loads/milk?span=1d"} {
+		x.size(1120, 1040)
+		x.open(path)
 		x.drawn()
-		if p.height == 0 {
-			p.height = eval[int64](x, "document.documentElement.scrollHeight")
-		}
-		x.size(1120, p.height)
-		small := palette(t, x.picture(1120))
+		x.until("charts are drawn", `[...document.querySelectorAll(".chart")].every(c => c.querySelector("canvas"))`)
+		eval[any](x, fmt.Sprintf(`document.querySelector("%s").scrollIntoView()`, map[string]string{"sheet-of-loads": "body", "load": ".band"}[name]))
+		small := palette(t, x.view())
 		if len(small) > pictureBytes {
 			t.Errorf("%s has %d bytes, of at most %g", name, len(small), pictureBytes)
 		}
 		write(t, dir, name+".png", small)
+	}
+}
+
+// goesOn waits until the demo's time has gone on by so much.
+func (a *agentUnderTest) goesOn(t *testing.T, span time.Duration) {
+	t.Helper()
+	const at = "heatreeve_event_timestamp_seconds"
+	end := a.value(t, at) + span.Seconds()
+	for last := 0.0; last < end; { // each hour of the plant within patience
+		next := min(end, last+3600)
+		eventually(t, "the demo goes on", func() error {
+			if last = a.value(t, at); last < next {
+				return fmt.Errorf("it is at %.0f", last)
+			}
+			return nil
+		})
 	}
 }
 
