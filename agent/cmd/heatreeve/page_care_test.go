@@ -142,6 +142,19 @@ func (b *browser) keyboard(t *testing.T, a *agentUnderTest) {
 			t.Errorf("Tab does not come to the band of %s:\n%s", load, all)
 		}
 	}
+	for name, path := range pages {
+		x.open(path)
+		stops := x.tabulate(80)
+		for _, s := range stops {
+			if !s.Seen {
+				t.Errorf("%s: the focus does not show on %+v", name, s)
+			}
+		}
+		if len(stops) < 12 {
+			t.Errorf("%s: Tab stops only at %+v", name, stops)
+		}
+	}
+	x.open("/")
 	x.do(chromedp.Focus(chromedp.CSS("input[name=find]")), chromedp.KeyEvent("MILK"))
 	x.until("the filter leaves milk alone", `[...document.querySelectorAll("[data-load]")].every(b => (b.dataset.load === "milk") === (b.getClientRects().length > 0))`)
 	x.do(chromedp.KeyEvent(kb.Enter))

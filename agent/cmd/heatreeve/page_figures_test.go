@@ -73,7 +73,10 @@ func (b *browser) figures(t *testing.T, a *agentUnderTest) {
 		x.open("/" + query)
 		var last time.Time
 		compared, changed, before := 0, 0, ""
-		for range 8 {
+		for beats := 0; compared < 24 || changed < 4; beats++ {
+			if beats == 100 {
+				t.Fatalf("%q: in %d beats only %d figures compared, and %d changes seen", query, beats, compared, changed)
+			}
 			s, metrics := x.sameBeat(a, last)
 			last = s.At
 			if len(s.Bands) != 4 {
@@ -87,9 +90,7 @@ func (b *browser) figures(t *testing.T, a *agentUnderTest) {
 				changed++
 			}
 		}
-		if compared < 24 || changed < 4 {
-			t.Errorf("%q: only %d figures compared, and %d changes seen", query, compared, changed)
-		}
+		t.Logf("%q: %d figures compared, %d changes seen", query, compared, changed)
 	}
 }
 

@@ -32,7 +32,7 @@ var hostileTexts = append([]string{
 	"\x00\x1b[31m\r\n\r\n<script>alert(2)</script>",
 }, hostileNames...)
 
-// hostileSite has loads of these names; the last of them is far short of its design.
+// hostileSite has loads of these names; some of them far short of their design.
 func hostileSite() string {
 	quoted := func(s string) string {
 		b, _ := json.Marshal(s) // of a string; and JSON is YAML
@@ -78,6 +78,14 @@ func (b *browser) hostile(t *testing.T) {
 	if want := slices.Sorted(slices.Values(hostileNames)); !slices.Equal(names, want) {
 		t.Errorf("the bands are called\n%q\nwant\n%q", names, want)
 	}
+	eventually(t, "a warning names a load", func() error {
+		x.open("/")
+		if text := eval[string](x, `document.querySelector(".warnings")?.textContent ?? ""`); !strings.Contains(text, hostileNames[2]) {
+			return fmt.Errorf("the warnings are %q", text)
+		}
+		return nil
+	})
+	x.harmless("/ with warnings")
 	links := eval[map[string]string](x, `Object.fromEntries([...document.querySelectorAll(".band")].map(b => [b.querySelector("h3").textContent, b.querySelector("h3 a").getAttribute("href")]))`)
 	for _, name := range hostileNames {
 		x.open(links[name])

@@ -111,7 +111,7 @@ func (b *browser) live(t *testing.T) {
 	if over := time.Duration(eval[int64](x, "window.lastShown")-p.last.Load()) * time.Millisecond; over > liveMaxAge {
 		t.Errorf("the page shows a duty %v after the last reading of a tag, of which the age is %v", over, liveMaxAge)
 	}
-	if longest := liveMaxAge + liveLateness + 4*time.Second; since > longest {
+	if longest := liveMaxAge + liveLateness + 7*time.Second; since > longest {
 		t.Errorf("the page calls the load blind after %v, want at most %v", since, longest)
 	}
 	t.Logf("blind %v after the last reading, with an age of %v", since.Round(time.Millisecond), liveMaxAge)
