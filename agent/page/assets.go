@@ -3,14 +3,11 @@ package page
 import (
 	"bytes"
 	"compress/gzip"
-	"crypto/sha256"
 	"embed"
-	"encoding/hex"
 	"io/fs"
 	"mime"
 	"net/http"
 	"path"
-	"strings"
 	"sync"
 )
 
@@ -41,8 +38,7 @@ var packed = sync.OnceValue(func() map[string]asset {
 })
 
 func pack(name string, text []byte) asset {
-	sum := sha256.Sum256(text)
-	a := asset{kind: mime.TypeByExtension(path.Ext(name)), tag: `"` + hex.EncodeToString(sum[:8]) + `"`, plain: text}
+	a := asset{kind: mime.TypeByExtension(path.Ext(name)), tag: tagOf(text), plain: text}
 	switch path.Ext(name) { // as no table of the system may have it
 	case ".js":
 		a.kind = "text/javascript; charset=utf-8"
@@ -74,17 +70,13 @@ func assets() http.Handler {
 		}
 		h := w.Header()
 		h.Set("Content-Type", a.kind)
-		h.Set("ETag", a.tag)
 		h.Set("Cache-Control", "no-cache")
 		h.Set("Vary", "Accept-Encoding")
-		switch {
-		case strings.Contains(r.Header.Get("If-None-Match"), a.tag):
-			w.WriteHeader(http.StatusNotModified)
-		case a.gzip != nil && takesGzip(r.Header.Values("Accept-Encoding")):
+		if a.gzip != nil && takesGzip(r.Header.Values("Accept-Encoding")) {
 			h.Set("Content-Encoding", "gzip")
-			_, _ = w.Write(a.gzip)
-		default:
-			_, _ = w.Write(a.plain)
+			whole(w, r, tagOfPacked(a.tag), a.gzip)
+			return
 		}
+		whole(w, r, a.tag, a.plain)
 	})
 }

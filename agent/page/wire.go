@@ -1,7 +1,6 @@
 package page
 
 import (
-	"bytes"
 	"crypto/sha256"
 	"encoding/base64"
 	"net/http"
@@ -18,16 +17,27 @@ func Answer(w http.ResponseWriter, r *http.Request, kind string, body []byte) {
 	if h.Get("Cache-Control") == "" {
 		h.Set("Cache-Control", "no-cache")
 	}
-	tag := tagOf(body)
 	h.Add("Vary", "Accept-Encoding")
+	tag := tagOf(body)
 	if len(body) >= leastPacked && takesGzip(r.Header.Values("Accept-Encoding")) {
 		h.Set("Content-Encoding", "gzip")
-		body, tag = packedUp(body), tag[:len(tag)-1]+`-gzip"` // another validator (RFC 9110, 8.8.3.3)
+		body, tag = packedUp(body), tagOfPacked(tag)
 	}
+	whole(w, r, tag, body)
+}
+
+// whole writes a body whose header is set, or that who asks has it.
+func whole(w http.ResponseWriter, r *http.Request, tag string, body []byte) {
+	h := w.Header()
 	h.Set("ETag", tag)
+	if holds(r.Header.Values("If-None-Match"), tag) {
+		h.Del("Content-Type")
+		h.Del("Content-Encoding")
+		w.WriteHeader(http.StatusNotModified)
+		return
+	}
 	h.Set("Content-Length", strconv.Itoa(len(body)))
-	c := &conditional{ResponseWriter: w, have: r.Header.Values("If-None-Match")}
-	_, _ = c.Write(body) // who asked has gone
+	_, _ = w.Write(body) // who asked has gone
 }
 
 // tagOf is the entity tag of a body.
@@ -36,63 +46,6 @@ func tagOf(body []byte) string {
 	return `"` + base64.RawURLEncoding.EncodeToString(sum[:16]) + `"`
 }
 
-// Bounded has what h answers go out by [Answer], where h is done with it: what is no 200, or
-// has a validator of its own, goes out as it is. It keeps the whole answer in memory.
-func Bounded(h http.Handler) http.Handler {
-	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
-		k := &kept{ResponseWriter: w, status: http.StatusOK}
-		h.ServeHTTP(k, r)
-		if k.status != http.StatusOK || w.Header().Get("ETag") != "" {
-			w.WriteHeader(k.status)
-			_, _ = w.Write(k.body.Bytes()) // who asked has gone
-			return
-		}
-		Answer(w, r, w.Header().Get("Content-Type"), k.body.Bytes())
-	})
-}
-
-// kept is an answer that is held until it is whole.
-type kept struct {
-	http.ResponseWriter
-	status int
-	body   bytes.Buffer
-}
-
-func (k *kept) Write(p []byte) (int, error) { return k.body.Write(p) }
-
-func (k *kept) WriteHeader(status int) {
-	if status < 200 {
-		k.ResponseWriter.WriteHeader(status)
-		return
-	}
-	k.status = status
-}
-
-// conditional answers 304 in place of a body that who asks has.
-type conditional struct {
-	http.ResponseWriter
-	have  []string // lines of If-None-Match
-	begun bool
-	held  bool // by who asks
-}
-
-func (c *conditional) WriteHeader(status int) {
-	h := c.Header()
-	if c.begun = true; status == http.StatusOK && holds(c.have, h.Get("ETag")) {
-		c.held, status = true, http.StatusNotModified
-		for _, name := range []string{"Content-Type", "Content-Length", "Content-Encoding"} {
-			h.Del(name)
-		}
-	}
-	c.ResponseWriter.WriteHeader(status)
-}
-
-func (c *conditional) Write(p []byte) (int, error) {
-	if !c.begun {
-		c.WriteHeader(http.StatusOK)
-	}
-	if c.held {
-		return len(p), nil
-	}
-	return c.ResponseWriter.Write(p)
-}
+// tagOfPacked is that of the body when it is compressed, which is another one (RFC 9110,
+// 8.8.3.3).
+func tagOfPacked(tag string) string { return tag[:len(tag)-1] + `-gzip"` }

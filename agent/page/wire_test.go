@@ -98,30 +98,6 @@ func TestOnTheWire(t *testing.T) {
 	}
 }
 
-// What a handler writes goes out as one answer, and what is no answer as it is.
-func TestBounded(t *testing.T) {
-	h := Bounded(http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
-		w.Header().Set("Content-Type", "text/html; charset=utf-8")
-		if r.Method == "DELETE" {
-			w.WriteHeader(http.StatusMethodNotAllowed)
-		}
-		for range 4 {
-			io.WriteString(w, strings.Repeat("a", long/4))
-		}
-	}))
-	resp := answered(t, h, "GET", nil)
-	if resp.StatusCode != 200 || resp.Header.Get("ETag") == "" || resp.Header.Get("Content-Type") != "text/html; charset=utf-8" {
-		t.Errorf("%d %v", resp.StatusCode, resp.Header)
-	}
-	if again := answered(t, h, "GET", http.Header{"If-None-Match": {resp.Header.Get("ETag")}}); again.StatusCode != 304 {
-		t.Errorf("again: %d", again.StatusCode)
-	}
-	resp = answered(t, h, "DELETE", http.Header{"If-None-Match": {"*"}})
-	if body, err := io.ReadAll(resp.Body); err != nil || resp.StatusCode != 405 || len(body) != long || resp.Header.Get("ETag") != "" {
-		t.Errorf("refused: %d %v, %d bytes, %v", resp.StatusCode, resp.Header, len(body), err)
-	}
-}
-
 // Who takes gzip is given it, of long answers, with a validator of its own that holds.
 func TestAnswerIsCompressed(t *testing.T) {
 	packed := answered(t, letters(long), http.MethodGet, http.Header{"Accept-Encoding": {"gzip"}})
@@ -155,6 +131,32 @@ func TestTakesGzip(t *testing.T) {
 	for _, lines := range [][]string{{"gzip"}, {"deflate, gzip;q=0.5"}, {"*"}, {"br", "GZIP"}, {"identity;q=0, *;q=0.1"}} {
 		if !takesGzip(lines) {
 			t.Errorf("%q takes it", lines)
+		}
+	}
+}
+
+// An asset has a validator as it is and another one compressed, each of which holds.
+func TestAssetsHaveValidators(t *testing.T) {
+	ask := func(coding, match string) *http.Response {
+		r := httptest.NewRequest(http.MethodGet, "/assets/sheet.js", nil)
+		r.Header = http.Header{"Accept-Encoding": {coding}, "If-None-Match": {match}}
+		w := httptest.NewRecorder()
+		assets().ServeHTTP(w, r)
+		return w.Result()
+	}
+	plain, packed := ask("identity", "").Header.Get("ETag"), ask("gzip", "").Header.Get("ETag")
+	if plain == "" || packed == "" || plain == packed {
+		t.Errorf("validators %s and %s", plain, packed)
+	}
+	for _, tt := range []struct {
+		coding, match string
+		want          int
+	}{
+		{"identity", plain, 304}, {"gzip", `"x", ` + packed, 304}, {"gzip", "*", 304}, {"gzip", plain, 200}, {"gzip;q=0", packed, 200},
+	} {
+		resp := ask(tt.coding, tt.match)
+		if resp.StatusCode != tt.want || resp.Header.Get("Vary") != "Accept-Encoding" || (resp.Header.Get("Content-Encoding") == "gzip") != (tt.coding == "gzip" && tt.want == 200) {
+			t.Errorf("%s, If-None-Match %s: %d %v, want %d", tt.coding, tt.match, resp.StatusCode, resp.Header, tt.want)
 		}
 	}
 }
