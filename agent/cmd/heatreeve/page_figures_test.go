@@ -5,6 +5,7 @@ package main
 import (
 	"fmt"
 	"math"
+	"regexp"
 	"strconv"
 	"strings"
 	"testing"
@@ -21,6 +22,21 @@ func (b *browser) light(t *testing.T, a *agentUnderTest) {
 		t.Errorf("the first page takes %d requests and %.0f bytes; allowed are 14 and 150 kB: %q", len(paths), bytes, paths)
 	}
 	t.Logf("the first page takes %d requests and %.0f bytes", len(paths), bytes)
+}
+
+// readout holds what a chart says of a point to the digits that its ± leaves.
+func (b *browser) readout(t *testing.T, a *agentUnderTest) {
+	x := b.tab(t, a.address)
+	x.open("/loads/hot-water")
+	const text = `(document.querySelector(".picker output")?.textContent ?? "")`
+	x.until("a chart tells its newest point", text+`.includes("±")`)
+	m := regexp.MustCompile(`duty (\d+)(\.\d+)? ± (\d+)(\.\d+)? kW`).FindStringSubmatch(eval[string](x, text))
+	if m == nil {
+		t.Fatalf("the chart says %q", eval[string](x, text))
+	}
+	if digits := strings.TrimLeft(m[3]+strings.TrimPrefix(m[4], "."), "0"); len(digits) != 2 || len(m[2]) != len(m[4]) {
+		t.Errorf("the chart says %q: the ± is to have two digits, and the duty to end where it does", m[0])
+	}
 }
 
 // shownBand is what a band shows.

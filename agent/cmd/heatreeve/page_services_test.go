@@ -31,6 +31,7 @@ func (b *browser) onDemo(t *testing.T, axe string) {
 	a := startDemo(t, "60")
 	t.Run("figures", func(t *testing.T) { b.figures(t, a) })
 	t.Run("light", func(t *testing.T) { b.light(t, a) })
+	t.Run("readout", func(t *testing.T) { b.readout(t, a) })
 	t.Run("care", func(t *testing.T) { b.care(t, a, axe) })
 	t.Run("keyboard", func(t *testing.T) { b.keyboard(t, a) })
 	t.Run("without script", func(t *testing.T) { b.still(t, a) })

@@ -21,14 +21,18 @@
   // scaleOf reads what the server says of a chart's unit.
   function scaleOf(figure) {
     const d = figure.dataset;
-    const factor = Number(d.factor), offset = Number(d.offset), decimals = Number(d.decimals);
-    const step = Math.pow(10, -decimals);
+    const factor = Number(d.factor), offset = Number(d.offset), usual = Number(d.decimals);
     return {
       unit: d.unit,
       spread: Number(d.spread) || 0,
       of: (si) => (si === null || si === undefined ? null : (si - offset) / factor),
       span: (si) => (si === null || si === undefined ? null : si / factor),
-      text: (x) => (x === null || x === undefined ? "–" : decimals >= 0 ? x.toFixed(decimals) : String(Math.round(x / step) * step)),
+      // text has the digits that its own spread leaves, two of it, or those of the chart.
+      text(x, spread) {
+        if (x === null || x === undefined) return "–";
+        const n = spread > 0 ? Math.min(6, 1 - Number(spread.toExponential(1).split("e")[1])) : usual;
+        return n >= 0 ? x.toFixed(n) : String(Math.round(x / 10 ** -n) * 10 ** -n);
+      },
     };
   }
 
@@ -53,7 +57,7 @@
         { series: [3, 4], fill: () => faint("--quiet", 0.12) },
         { series: [5, 6], fill: () => faint(hue, 0.32) },
       ],
-      told: (s, v) => "duty " + s.text(v[7]) + (v[4] === null || v[7] === null ? "" : " ± " + s.text(v[4] - v[7])) + " " + s.unit + (v[6] === null ? "" : ", expected " + s.text(v[6]) + " " + s.unit),
+      told: (s, v) => "duty " + s.text(v[7], v[4] - v[7]) + (v[4] === null || v[7] === null ? "" : " ± " + s.text(v[4] - v[7], v[4] - v[7])) + " " + s.unit + (v[6] === null ? "" : ", expected " + s.text(v[6]) + " " + s.unit),
     },
     temperature: {
       columns: (s, c) => [c.inlet_K.map(s.of), c.outlet_K.map(s.of)],
