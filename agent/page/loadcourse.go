@@ -167,8 +167,8 @@ func (p *coursePart) coverage(x *answer.Series, whole time.Duration) {
 	for i := range x.Bridged {
 		bridged += x.Bridged[i]
 	}
-	all := max(whole.Seconds(), 1)
-	p.Measured, p.Bridged = percentText(measured/all), percentText(bridged/all)
+	all := max(whole.Seconds(), measured+bridged, 1)
+	p.Measured, p.Bridged = coverageText(measured/all), percentText(bridged/all)
 	p.Missing = percentText(max(0, all-measured-bridged) / all)
 }
 

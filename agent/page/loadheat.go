@@ -125,7 +125,7 @@ func (s *loadSheet) heatBar(x *answer.PeriodReport) heatBar {
 
 func (s *loadSheet) heatRow(x *answer.PeriodReport) heatRow {
 	u := s.units.Heat
-	r := heatRow{Coverage: percentText(x.Coverage)}
+	r := heatRow{Coverage: coverageText(x.Coverage)}
 	r.Given, r.Spread = shown.Figure(u, x.Given, x.Expanded)
 	r.Taken, _ = shown.Figure(u, x.Taken, x.Expanded)
 	if both := x.Bridged + x.Measured + x.Missing; both > 0 {

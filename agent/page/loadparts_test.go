@@ -291,3 +291,13 @@ func TestNewestEvents(t *testing.T) {
 		}
 	}
 }
+
+// Where only hours are left of a time that does not begin with one, they reach beyond it, and are
+// not more than all of it.
+func TestCoverageOfHoursThatReachBeyond(t *testing.T) {
+	p := &coursePart{}
+	p.coverage(&answer.Series{Measured: []float64{3600, 2700}, Bridged: []float64{0, 900}}, time.Hour)
+	if p.Measured != "87.5 %" || p.Bridged != "12.5 %" || p.Missing != "0.0 %" {
+		t.Errorf("measured %s, bridged %s, missing %s", p.Measured, p.Bridged, p.Missing)
+	}
+}

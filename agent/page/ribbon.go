@@ -71,7 +71,7 @@ func drawn(s *answer.Series, from int64) *ribbon {
 	share := measured / ribbonSpan.Seconds()
 	return &ribbon{
 		Base: base.path(), Given: given.path(), Taken: taken.path(), Bridged: bridged.path(),
-		Said: "the last 24 hours: measured " + strconv.FormatFloat(math.Floor(1000*share)/10, 'f', -1, 64) + " %",
+		Said: "the last 24 hours: measured " + coverageText(share),
 	}
 }
 

@@ -31,7 +31,7 @@
       text(x, spread) {
         if (x === null || x === undefined) return "–";
         const n = spread > 0 ? Math.min(6, 1 - Number(spread.toExponential(1).split("e")[1])) : usual;
-        return n >= 0 ? x.toFixed(n) : String(Math.round(x / 10 ** -n) * 10 ** -n);
+        return n >= 0 ? x.toFixed(n).replace(/^-(0[.0]*)$/, "$1") : String(Math.round(x / 10 ** -n) * 10 ** -n);
       },
     };
   }
