@@ -180,17 +180,31 @@ func faults(s *view.Snapshot) (all []string) {
 	if s.History.Fault != "" {
 		all = append(all, "history: "+s.History.Fault)
 	}
-	for i := range s.Tags {
-		if t := &s.Tags[i]; t.Kept != "" {
-			all = append(all, t.Name+": the broker had kept "+t.Kept+", of an age that nobody knows; it is in no figure")
-		}
-	}
+	all = append(all, kept(s.Tags)...)
 	return append(all, refused(s.Tags)...)
 }
 
-// refusedTold is how many tags are named of which all was refused: with a wrong clock it is
+// tagsTold is how many tags are named for one reason: with a wrong clock, or after a start, it is
 // every tag of a plant.
-const refusedTold = 5
+const tagsTold = 5
+
+// kept tells the tags that have sent nothing since the broker had kept something of them.
+func kept(tags []view.Tag) (all []string) {
+	more := 0
+	for i := range tags {
+		switch t := &tags[i]; {
+		case t.Kept == "":
+		case len(all) < tagsTold:
+			all = append(all, t.Name+": the broker had kept "+t.Kept+", of an age that nobody knows; it is in no figure")
+		default:
+			more++
+		}
+	}
+	if more > 0 {
+		all = append(all, fmt.Sprintf("of %d more tags the broker had kept a reading", more))
+	}
+	return all
+}
 
 // refused tells the tags that have sent, but nothing that could be used.
 func refused(tags []view.Tag) (all []string) {
@@ -208,7 +222,7 @@ func refused(tags []view.Tag) (all []string) {
 		}
 		switch {
 		case len(reasons) == 0:
-		case len(all) < refusedTold:
+		case len(all) < tagsTold:
 			all = append(all, t.Name+": all that came was refused ("+strings.Join(reasons, ", ")+"); the log tells an example")
 		default:
 			more++

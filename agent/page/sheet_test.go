@@ -100,8 +100,11 @@ func TestSheetTellsEachLoad(t *testing.T) {
 	short.Name, short.Verdict = "kiln", design.Short
 	p, source := mill(t, cooler(), hall(), doubted, short)
 	source.snapshot.Tags = []view.Tag{{Name: "TT-8", Newest: 1}, {Name: "TT-9", Kept: "21.5 °C"}}
-	for i := range refusedTold + 2 {
+	for i := range tagsTold + 2 {
 		source.snapshot.Tags = append(source.snapshot.Tags, view.Tag{Name: fmt.Sprintf("FT-%d", i), Refused: []view.Refusal{{Reason: "empty"}, {Reason: "ahead", Count: 20}}})
+	}
+	for i := range tagsTold + 1 { // two more than are told, with TT-9
+		source.snapshot.Tags = append(source.snapshot.Tags, view.Tag{Name: fmt.Sprintf("PT-%d", i), Kept: "1 bar"})
 	}
 	source.snapshot.History.Fault = "no space left"
 	w := get(p, "/")
@@ -109,7 +112,7 @@ func TestSheetTellsEachLoad(t *testing.T) {
 	for _, want := range []string{
 		"hall blind – kW takes heat", "TT-1 is old", "cooler holding 40.80 ± 0.70 kW gives heat", "sensible part only: coil",
 		`tag "TT-2" is uncertain: stuck; sensible part only: coil`, "TT-9: the broker had kept 21.5 °C, of an age that nobody knows", "history: no space left",
-		"FT-0: all that came was refused (20 ahead); the log tells an example", "of 2 more tags all that came was refused", "No safety function.",
+		"FT-0: all that came was refused (20 ahead); the log tells an example", "of 2 more tags all that came was refused", "of 2 more tags the broker had kept a reading", "No safety function.",
 	} {
 		if !strings.Contains(text, want) {
 			t.Errorf("%q is not on the sheet: %s", want, text)
