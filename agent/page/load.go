@@ -47,7 +47,7 @@ type loadSheet struct {
 	Events     *eventsPart
 }
 
-// sheetWait is how long all parts of a sheet together wait for their answers: less than a
+// sheetWait is how long all that an answer needs is waited for together: less than a
 // connection may take to be written to.
 const sheetWait = 12 * time.Second
 

@@ -1,10 +1,14 @@
 package page
 
 import (
+	"context"
 	"fmt"
+	"net/http"
+	"net/url"
 	"slices"
 	"strings"
 	"testing"
+	"testing/synctest"
 	"time"
 
 	"heatreeve/agent/answer"
@@ -139,4 +143,31 @@ func TestLineHasRoomForItsFigures(t *testing.T) {
 			t.Errorf("%s: %q, want %q", unit, got, want)
 		}
 	}
+}
+
+// busy is a source that has no time for a series.
+type busy struct{ *fixed }
+
+func (busy) Series(ctx context.Context, _ answer.SeriesQuery) (*answer.Series, error) {
+	ctx, cancel := context.WithTimeout(ctx, 15*time.Second)
+	defer cancel()
+	<-ctx.Done()
+	return nil, ctx.Err()
+}
+
+// All ribbons of a request together wait no longer than an answer may take.
+func TestRibbonsDoNotWaitInALine(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p, source := mill(t, many(20)...)
+		p.Source = busy{source}
+		query := url.Values{}
+		for i := range 20 {
+			query.Add("load", fmt.Sprintf("load-%d", i))
+		}
+		begin := time.Now()
+		w := get(p, "/ribbons?"+query.Encode())
+		if took := time.Since(begin); took > sheetWait || w.Code != http.StatusOK || w.Body.String() != "{}" {
+			t.Errorf("after %v: %d %s", took, w.Code, w.Body)
+		}
+	})
 }

@@ -68,9 +68,11 @@ func (p *Page) ribbonPaths(w http.ResponseWriter, r *http.Request) {
 		http.Error(w, fmt.Sprintf("%d loads are asked for; at most %d at once", len(loads), ribbonsAtOnce), http.StatusBadRequest)
 		return
 	}
+	ctx, cancel := context.WithTimeout(r.Context(), sheetWait)
+	defer cancel()
 	all := make(map[string]*ribbon, len(loads))
 	for _, load := range loads {
-		if x, err := p.ribbon(r.Context(), load); err == nil {
+		if x, err := p.ribbon(ctx, load); err == nil {
 			all[load] = x
 		}
 	}
