@@ -3,8 +3,10 @@ package page
 import (
 	"encoding/json"
 	"fmt"
+	"hash/fnv"
 	"strconv"
 	"sync"
+	"time"
 
 	"heatreeve/agent/shown"
 	"heatreeve/agent/view"
@@ -24,6 +26,7 @@ type edition struct {
 	number  uint64 // of snapshots seen; 0 before the first
 	shown   []now
 	changes []byte // events that lead from the one before to this
+	warned  string // tells one list of warnings from another
 	readers int
 }
 
@@ -77,7 +80,7 @@ func (p *Page) since(key string, u shown.Units, number uint64) (events []byte, a
 	case e.number == number+1 && number > 0:
 		return e.changes, e.number, f.beaten
 	}
-	return eventsOf(nil, e.shown, e.of.At), e.number, f.beaten
+	return appendWarned(eventsOf(nil, e.shown, e.of.At), e.warned), e.number, f.beaten
 }
 
 // turn goes on to another snapshot.
@@ -87,8 +90,27 @@ func (e *edition) turn(s *view.Snapshot, at int64, u shown.Units) {
 		fresh[i] = nowOf(s, i, at, u)
 	}
 	e.changes = eventsOf(e.shown, fresh, s.At)
+	if warned := warnedOf(s); warned != e.warned {
+		e.changes, e.warned = appendWarned(e.changes, warned), warned
+	}
 	e.of, e.shown = s, fresh
 	e.number++
+}
+
+// warnedOf tells one list of warnings from another: by which there are, and where each stands.
+func warnedOf(s *view.Snapshot) string {
+	h := fnv.New64a()
+	for i := range s.Warnings.All {
+		l := &s.Warnings.All[i]
+		fmt.Fprintf(h, "%d %s %s %d\n", l.Number, l.State(), stateOf(l, time.UTC), l.End)
+	}
+	return strconv.FormatUint(h.Sum64(), 36)
+}
+
+// appendWarned is the event named warnings: its data are those of [warnedOf]. A page that was
+// made with others asks for its list again.
+func appendWarned(b []byte, warned string) []byte {
+	return fmt.Appendf(b, "event: warnings\ndata: %s\n\n", warned)
 }
 
 // eventsOf are the server-sent events (WHATWG HTML, 9.2) that lead from before, which is as

@@ -26,6 +26,7 @@ type sheetOfLoads struct {
 	Hidden   int       // bands that the filter leaves out
 	Warnings []warning // that stand
 	Returned []warning // that have ended, and nobody has marked as seen
+	Warned   string    // tells this list of warnings from another
 	// Exchangers are those of which there is something to tell.
 	Exchangers []exchangerLine
 	Hours      []string // along the ribbons
@@ -124,6 +125,7 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 	slices.SortStableFunc(x.Bands, func(a, b band) int { return cmp.Compare(a.attention(), b.attention()) })
 	x.Exchangers = p.exchangerLines(&x.frame, s)
 	x.Warnings, x.Returned = p.warningsOf(&x.frame, s, "")
+	x.Warned = warnedOf(s)
 }
 
 // warningsOf are those of a load, or all: that stand, and that have returned.

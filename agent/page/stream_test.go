@@ -14,6 +14,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/view"
+	"heatreeve/agent/warn"
 )
 
 // reader follows the stream as the page's script does.
@@ -22,6 +23,7 @@ type reader struct {
 	words  map[int][2]string
 	at     int64
 	plan   string
+	warned string
 }
 
 // take reads one event.
@@ -30,6 +32,8 @@ func (r *reader) take(t *testing.T, name, data string) {
 	switch name {
 	case "plan":
 		r.plan = data
+	case "warnings":
+		r.warned = data
 	case "words":
 		var all [][3]any
 		if err := json.Unmarshal([]byte(data), &all); err != nil {
@@ -182,6 +186,44 @@ func TestStreamTellsChanges(t *testing.T) {
 	}
 	if got, m, _ := p.since(key, p.usual, n+2); got != nil || m != n+2 {
 		t.Errorf("without a beat: %q", got)
+	}
+}
+
+// A warning that is raised, and one that is acknowledged, is told once; the page then made has
+// the list that the event tells of.
+func TestStreamTellsOfWarnings(t *testing.T) {
+	p, source := mill(t, many(2)...)
+	key := p.usual.Key()
+	p.feed.join(key)
+	follower := &reader{fields: make([][4]string, 2), words: map[int][2]string{}}
+	number := uint64(0)
+	turn := func(entries ...warn.Entry) (events string) {
+		t.Helper()
+		s := *source.snapshot
+		s.At += 1e9
+		s.Warnings.All = nil
+		for _, e := range entries {
+			s.Warnings.All = append(s.Warnings.All, warn.Listed{Entry: e})
+		}
+		source.snapshot = &s
+		b, at, _ := p.since(key, p.usual, number)
+		number = at
+		follower.events(t, string(b))
+		if page := get(p, "/").Body.String(); !strings.Contains(page, `data-warned="`+follower.warned+`"`) {
+			t.Errorf("the page is of other warnings than %q: %s", follower.warned, page)
+		}
+		return string(b)
+	}
+	e := warn.Entry{Warning: design.Warning{Subject: "load-1", Kind: design.WarnShort, Begin: noon.UnixNano()}, Number: 7}
+	marked := e
+	marked.Mark = &warn.Mark{By: "shift"}
+	for _, step := range []struct {
+		entries []warn.Entry
+		told    bool
+	}{{nil, true}, {[]warn.Entry{e}, true}, {[]warn.Entry{e}, false}, {[]warn.Entry{marked}, true}, {nil, true}} {
+		if got := turn(step.entries...); strings.Contains(got, "event: warnings\n") != step.told {
+			t.Errorf("%+v: told %v in %q", step.entries, !step.told, got)
+		}
 	}
 }
 

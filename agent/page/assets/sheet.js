@@ -90,6 +90,20 @@
     filter();
   }
 
+  // warned asks for the list of warnings again where it is another than that of the page.
+  const standing = document.getElementById("standing"); // which the sheet of one load has not
+  async function warned(which) {
+    if (!standing || standing.dataset.warned === which) return;
+    standing.dataset.warned = which;
+    await new Promise((go) => setTimeout(go, 2000 * Math.random())); // not all pages at once
+    const answer = await fetch(location.href).catch(() => null);
+    if (!answer || !answer.ok) { standing.dataset.warned = ""; return; } // asked again when the link is back
+    const fresh = new DOMParser().parseFromString(await answer.text(), "text/html").getElementById("standing");
+    if (!fresh) return;
+    if (standing.querySelector("details[open]")) fresh.querySelector("details")?.setAttribute("open", "");
+    standing.replaceChildren(...fresh.childNodes);
+  }
+
   const find = document.querySelector("#filter input[name=find]");
   const hidden = document.getElementById("hidden");
   const before = form ? +(hidden.textContent.match(/^\d+/) || [0])[0] : 0; // that the agent has left out
@@ -130,6 +144,7 @@
     clearTimeout(timer);
     source = new EventSource(list.dataset.stream);
     source.addEventListener("plan", (e) => { if (e.data !== root.dataset.plan) location.reload(); });
+    source.addEventListener("warnings", (e) => warned(e.data));
     source.addEventListener("words", (e) => words(JSON.parse(e.data)));
     source.onmessage = (e) => {
       const t = figures(e.data);
