@@ -77,10 +77,12 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 		if x.Fault != "" {
 			status = http.StatusBadRequest
 		}
-		ctx, cancel := context.WithTimeout(r.Context(), sheetWait)
-		defer cancel()
-		sheet.fill(ctx)
-		x.Sheet = sheet
+		if s.At > 0 { // else there is nothing to tell yet
+			ctx, cancel := context.WithTimeout(r.Context(), sheetWait)
+			defer cancel()
+			sheet.fill(ctx)
+			x.Sheet = sheet
+		}
 	}
 	p.render(w, r, status, "load.html", &x)
 }

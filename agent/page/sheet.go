@@ -109,10 +109,8 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 	x.Began = true
 	x.At = time.Unix(0, s.At).In(p.Site.Zone)
 	x.Faults = faults(s)
-	from := x.At.Add(-ribbonSpan)
-	x.From, x.To = from.Format("Mon 15:04"), x.At.Format("15:04")
-	for h := 0; h <= 24; h += 6 {
-		x.Hours = append(x.Hours, from.Add(time.Duration(h)*time.Hour).Format("15:04"))
+	if s.At > 0 {
+		x.alongRibbons()
 	}
 	for i := range s.Loads {
 		b := p.bandOf(&x.frame, s, i)
@@ -126,6 +124,14 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 	x.Exchangers = p.exchangerLines(&x.frame, s)
 	x.Warnings, x.Returned = p.warningsOf(&x.frame, s, "")
 	x.Warned = warnedOf(s)
+}
+
+func (x *sheetOfLoads) alongRibbons() {
+	from := x.At.Add(-ribbonSpan)
+	x.From, x.To = from.Format("Mon 15:04"), x.At.Format("15:04")
+	for h := 0; h <= 24; h += 6 {
+		x.Hours = append(x.Hours, from.Add(time.Duration(h)*time.Hour).Format("15:04"))
+	}
 }
 
 // warningsOf are those of a load, or all: that stand, and that have returned.

@@ -200,3 +200,20 @@ func TestSheetBeforeTheFirstBeat(t *testing.T) {
 		t.Error(text)
 	}
 }
+
+// Before the first reading there is no event time, and nothing is told of 1970.
+func TestSheetsBeforeTheFirstReading(t *testing.T) {
+	p, source := mill(t, cooler())
+	source.snapshot.At = 0
+	plant := newFakePlant(t)
+	plant.snapshot.At = 0
+	for _, w := range []*httptest.ResponseRecorder{get(p, "/"), get(plant.page(t), "/loads/hot-water")} {
+		text := words(w.Body.String())
+		if w.Code != http.StatusOK || !strings.Contains(text, "No reading has come yet") || strings.Contains(text, "Thu 1 Jan") || strings.Contains(text, "19") {
+			t.Errorf("%d %s", w.Code, text)
+		}
+	}
+	if n := len(plant.series) + len(plant.reports) + len(plant.asked); n > 0 {
+		t.Errorf("asked %d times", n)
+	}
+}

@@ -148,6 +148,7 @@
     source.addEventListener("words", (e) => words(JSON.parse(e.data)));
     source.onmessage = (e) => {
       const t = figures(e.data);
+      if (!at && t > 0) location.reload(); // the first reading has come
       if (at && t > 0) { at.textContent = wallClock(t); at.dateTime = new Date(t * 1000).toISOString(); }
       alive();
     };
