@@ -99,10 +99,7 @@ func (s *loadSheet) subjects() []string {
 
 func (s *loadSheet) eventRow(e *answer.Event) eventRow {
 	r := eventRow{When: s.clock(e.At), Lasted: lasted(e), Kind: e.Kind, Subject: e.Subject, Text: e.Text}
-	about := s.address.until(e.At.Truncate(time.Minute).Add(30 * time.Minute)).over(&spans[0])
-	if about.to.After(s.now) {
-		about = about.until(time.Time{})
-	}
+	about := s.upTo(e.At.Truncate(time.Minute).Add(30 * time.Minute)).over(&spans[0])
 	r.Link = about.minute(e.At.Truncate(time.Minute)).link("course")
 	return r
 }

@@ -102,7 +102,7 @@ func (s *loadSheet) fillHeat(p *heatPart, l *answer.LoadReport) {
 		p.Given, p.Taken = p.Given || x.Given > 0, p.Taken || x.Taken > 0
 		row := s.heatRow(x)
 		row.When = periodName(x.Start.In(s.zone), s.address.by)
-		row.Link = s.address.until(x.End).over(spanOf(s.address.by)).link("course")
+		row.Link = s.upTo(x.End).over(spanOf(s.address.by)).link("course")
 		b := s.heatBar(x)
 		b.Title, b.Link = barTitle(&row, p.Unit), row.Link
 		if i%every == 0 {
@@ -113,6 +113,14 @@ func (s *loadSheet) fillHeat(p *heatPart, l *answer.LoadReport) {
 	}
 	p.Total = s.heatRow(&l.Total)
 	p.Bars = drawBars("heat by "+s.address.by, p.Unit, all)
+}
+
+// upTo is the address of the course up to an instant, or to the present where that is to come.
+func (s *loadSheet) upTo(t time.Time) loadAddress {
+	if t.After(s.now) {
+		return s.address.until(time.Time{})
+	}
+	return s.address.until(t)
 }
 
 func (s *loadSheet) heatBar(x *answer.PeriodReport) heatBar {

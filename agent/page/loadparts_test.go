@@ -301,3 +301,25 @@ func TestCoverageOfHoursThatReachBeyond(t *testing.T) {
 		t.Errorf("measured %s, bridged %s, missing %s", p.Measured, p.Bridged, p.Missing)
 	}
 }
+
+// The period that has not ended yet leads to the present, not to a time of which a part is missing
+// because it is to come.
+func TestPeriodUnderWayLeadsToThePresent(t *testing.T) {
+	p := newFakePlant(t)
+	l := &p.report.Loads[0]
+	l.Periods = append(l.Periods, answer.PeriodReport{Start: midday, End: midday.Add(time.Hour), Given: 3.6e9, Measured: 600, Coverage: 0.17})
+	links := elements(byID(t, parsed(t, sheetOf(t, p, "hot-water", "")), "heat"), "a")
+	underWay := 0
+	for _, a := range links {
+		to := attribute(a, "href")
+		if strings.Contains(to, "12-02T13%3A00") {
+			t.Errorf("leads to %s", to)
+		}
+		if strings.Contains(to, "span=1h") && !strings.Contains(to, "to=") {
+			underWay++
+		}
+	}
+	if underWay == 0 {
+		t.Error("no link leads to the present")
+	}
+}
