@@ -64,7 +64,7 @@ func (s *loadSheet) course(ctx context.Context) *coursePart {
 	s.scales(p, x)
 	if err == nil {
 		p.Rows = s.rows(x)
-		p.coverage(x, end.Sub(begin))
+		p.coverage(x, begin, end)
 		p.PointsMinutes = duration(time.Duration(x.Span) * time.Second)
 	}
 	return p
@@ -158,8 +158,11 @@ func rowOf(name string, u unit.Unit, lo, mean, hi, expanded float64) courseRow {
 	return r
 }
 
-// coverage tells how much of the time was measured.
-func (p *coursePart) coverage(x *answer.Series, whole time.Duration) {
+// coverage tells how much of the time from begin to end was measured, as far as the history goes.
+func (p *coursePart) coverage(x *answer.Series, begin, end time.Time) {
+	if x.Accounted.Before(end) {
+		end = x.Accounted
+	}
 	var measured, bridged float64
 	for i := range x.Measured {
 		measured += x.Measured[i]
@@ -167,7 +170,7 @@ func (p *coursePart) coverage(x *answer.Series, whole time.Duration) {
 	for i := range x.Bridged {
 		bridged += x.Bridged[i]
 	}
-	all := max(whole.Seconds(), measured+bridged, 1)
+	all := max(end.Sub(begin).Seconds(), measured+bridged, 1)
 	p.Measured, p.Bridged = coverageText(measured/all), percentText(bridged/all)
 	p.Missing = percentText(max(0, all-measured-bridged) / all)
 }

@@ -296,7 +296,7 @@ func TestNewestEvents(t *testing.T) {
 // not more than all of it.
 func TestCoverageOfHoursThatReachBeyond(t *testing.T) {
 	p := &coursePart{}
-	p.coverage(&answer.Series{Measured: []float64{3600, 2700}, Bridged: []float64{0, 900}}, time.Hour)
+	p.coverage(&answer.Series{Measured: []float64{3600, 2700}, Bridged: []float64{0, 900}, Accounted: midday}, midday.Add(-time.Hour), midday)
 	if p.Measured != "87.5 %" || p.Bridged != "12.5 %" || p.Missing != "0.0 %" {
 		t.Errorf("measured %s, bridged %s, missing %s", p.Measured, p.Bridged, p.Missing)
 	}
@@ -321,5 +321,14 @@ func TestPeriodUnderWayLeadsToThePresent(t *testing.T) {
 	}
 	if underWay == 0 {
 		t.Error("no link leads to the present")
+	}
+}
+
+// What is to come, or is not on disk yet, is not missing.
+func TestCoverageGoesAsFarAsTheHistory(t *testing.T) {
+	p := &coursePart{}
+	p.coverage(&answer.Series{Measured: []float64{3240}, Bridged: []float64{0}, Accounted: midday.Add(-6 * time.Minute)}, midday.Add(-time.Hour), midday)
+	if p.Measured != "100.0 %" || p.Missing != "0.0 %" {
+		t.Errorf("measured %s, missing %s", p.Measured, p.Missing)
 	}
 }
