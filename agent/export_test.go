@@ -419,3 +419,20 @@ func TestUnitThatHasChanged(t *testing.T) {
 		}
 	}
 }
+
+// The head of an export needs no turn, since no row is read for it.
+func TestHeadOfAnExport(t *testing.T) {
+	db, _ := noted(t, filepath.Join(t.TempDir(), "history.db"), 20)
+	s := newExports(newReports(historyIn(t, db, "Europe/Dublin")))
+	if !s.turn.taken(t.Context(), httptest.NewRecorder()) {
+		t.Fatal("there is no turn")
+	}
+	defer s.turn.free()
+	for method, want := range map[string]int{http.MethodHead: http.StatusOK, http.MethodGet: http.StatusServiceUnavailable} {
+		w := httptest.NewRecorder()
+		s.ServeHTTP(w, httptest.NewRequest(method, exportPath+"?tag=TT-1&format=json", nil))
+		if w.Code != want || method == http.MethodHead && (w.Header().Get("Content-Type") != "application/jsonl" || w.Header().Get(untilHeader) == "" || w.Body.Len() > 0) {
+			t.Errorf("%s: %d %v, want %d", method, w.Code, w.Header(), want)
+		}
+	}
+}

@@ -45,6 +45,10 @@ func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 		refuse(w, err)
 		return
 	}
+	if r.Method == http.MethodHead { // for whom no row need be read
+		x.head(w)
+		return
+	}
 	if !s.turn.taken(r.Context(), w) {
 		return
 	}
@@ -52,11 +56,8 @@ func (s *exports) ServeHTTP(w http.ResponseWriter, r *http.Request) {
 	x.serve(r.Context(), w)
 }
 
-// serve writes the answer. One that breaks off has no proper end, so that nobody takes it
-// for whole.
-func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
-	body := &steady{ResponseWriter: w, control: http.NewResponseController(w), stall: stallTime}
-	body.extend()
+// head tells what is known before the rows.
+func (x *export) head(w http.ResponseWriter) {
 	kind := "text/csv; charset=utf-8; header=present"
 	if x.json {
 		kind = "application/jsonl"
@@ -67,6 +68,14 @@ func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
 	if x.note != "" {
 		w.Header().Set(noteHeader, x.note)
 	}
+}
+
+// serve writes the answer. One that breaks off has no proper end, so that nobody takes it
+// for whole.
+func (x *export) serve(ctx context.Context, w http.ResponseWriter) {
+	body := &steady{ResponseWriter: w, control: http.NewResponseController(w), stall: stallTime}
+	body.extend()
+	x.head(w)
 	w.Header().Set("Trailer", rowsTrailer+", "+damageTrailer)
 	err := x.write(ctx, body)
 	switch {
