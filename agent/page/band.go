@@ -44,7 +44,8 @@ func nowOf(s *view.Snapshot, i int, at int64, u shown.Units) now {
 // band is a load on the sheet.
 type band struct {
 	now
-	Index  int // in the site file
+	Index  int  // in the site file
+	Hidden bool // the filter leaves it out, until it is otherwise
 	Load   string
 	Href   string
 	Serves string // "gives" or "takes"

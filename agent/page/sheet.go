@@ -115,8 +115,8 @@ func (x *sheetOfLoads) fill(p *Page, s *view.Snapshot, verdicts []string) {
 	for i := range s.Loads {
 		b := p.bandOf(&x.frame, s, i)
 		if !strings.Contains(strings.ToLower(b.Load), strings.ToLower(x.Find)) || len(verdicts) > 0 && !slices.Contains(verdicts, b.Verdict) {
+			b.Hidden = true
 			x.Hidden++
-			continue
 		}
 		x.Bands = append(x.Bands, b)
 	}

@@ -155,14 +155,22 @@ func TestLostIsToldWhereToGo(t *testing.T) {
 
 func TestSheetFilters(t *testing.T) {
 	p, _ := mill(t, cooler(), hall())
-	for _, tt := range []struct{ query, has, not string }{
-		{"?find=HAL", `data-load="hall"`, `data-load="cooler"`},
-		{"?verdict=holding", `data-load="cooler"`, `data-load="hall"`},
-		{"?verdict=blind&verdict=holding", `data-load="cooler"`, "left out"},
-		{"?find=nothing", "No load is so called", `data-load=`},
+	for _, tt := range []struct{ query, hidden, says string }{
+		{"?find=HAL", "cooler", "1 load left out"},
+		{"?verdict=holding", "hall", "1 load left out"},
+		{"?verdict=blind&verdict=holding", "", ""},
+		{"?find=nothing", "hall cooler", "2 loads left out"},
 	} {
-		if body := get(p, "/"+tt.query).Body.String(); !strings.Contains(body, tt.has) || strings.Contains(body, tt.not) {
-			t.Errorf("%s: want %q and not %q in %s", tt.query, tt.has, tt.not, body)
+		body := get(p, "/"+tt.query).Body.String()
+		var hidden []string
+		for _, band := range regexp.MustCompile(`<article [^>]*data-load="([^"]*)"[^>]* hidden>`).FindAllStringSubmatch(body, -1) {
+			hidden = append(hidden, band[1])
+		}
+		if strings.Join(hidden, " ") != tt.hidden || !strings.Contains(body, `id="hidden">`+tt.says+"<") {
+			t.Errorf("%s: hidden %q, want %q, and %q in %s", tt.query, hidden, tt.hidden, tt.says, body)
+		}
+		if none := strings.Contains(body, `<p id="nothing">`); none != (len(hidden) == 2) {
+			t.Errorf("%s: that there is none is told: %v", tt.query, none)
 		}
 	}
 }

@@ -29,7 +29,7 @@ func Figure(u unit.Unit, value, expanded float64) (text, spread string) {
 const None = "–"
 
 // mostDecimals is how many there are at most.
-const mostDecimals = 6
+const mostDecimals = 9
 
 // place is how many decimals show x with so many digits; below zero, tens and hundreds are
 // rounded.

@@ -38,6 +38,7 @@ func TestFigure(t *testing.T) {
 		{"kW", unit.Power, 641234, 0, "641.2", ""},
 		{"kW", unit.Power, math.NaN(), 1, None, ""},
 		{"kW", unit.Power, 641234, math.Inf(1), "641.2", ""},
+		{"MW", unit.Power, 5, 0.1, "0.00000500", "0.00000010"},
 		{"°C", unit.Temperature, 363.15, 0.24, "90.00", "0.24"},
 		{"°F", unit.Temperature, 363.15, 0.24, "194.00", "0.43"},
 		{"MWh", unit.Energy, 4.4e10, 5e8, "12.22", "0.14"},

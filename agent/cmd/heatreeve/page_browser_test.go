@@ -177,20 +177,27 @@ func devtools[P, R any](x *tab, c cdp.Command[P, R], parameters P) R {
 // eval is the value of a JavaScript expression, once its promise is kept.
 func eval[T any](x *tab, expression string) T {
 	x.Helper()
-	ctx, cancel := context.WithTimeout(x.ctx, patience)
-	defer cancel()
-	v, err := chromedp.Run(ctx, chromedp.Evaluate[T](expression, chromedp.EvalAwaitPromise))
+	v, err := evaluated[T](x, expression)
 	if err != nil {
 		x.Fatalf("%.200s: %v", expression, err)
 	}
 	return v
 }
 
-// until waits for a JavaScript expression to be true.
+func evaluated[T any](x *tab, expression string) (T, error) {
+	ctx, cancel := context.WithTimeout(x.ctx, patience)
+	defer cancel()
+	return chromedp.Run(ctx, chromedp.Evaluate[T](expression, chromedp.EvalAwaitPromise))
+}
+
+// until waits for a JavaScript expression to be true. A page that is just being loaded anew is
+// asked again.
 func (x *tab) until(what, expression string) {
 	x.Helper()
 	eventually(x.T, what, func() error {
-		if !eval[bool](x, "Boolean("+expression+")") {
+		if so, err := evaluated[bool](x, "Boolean("+expression+")"); err != nil {
+			return err
+		} else if !so {
 			return fmt.Errorf("not so at %s: %s", time.Now().Format("15:04:05.0"), expression)
 		}
 		return nil

@@ -42,6 +42,8 @@
     if (has(duty)) {
       x.lens.setAttribute("cx", at(+duty));
       x.lens.setAttribute("rx", (100 * Math.min(1, +pm / (x.high - x.low))).toFixed(2) + "%");
+      x.beyond = +duty < x.low || +duty > x.high;
+      if (x.beyond) rescale();
     }
     for (const part of [x.notch, x.a, x.b]) part.toggleAttribute("hidden", !has(expected));
     if (has(expected)) {
@@ -96,22 +98,43 @@
     if (!standing || standing.dataset.warned === which) return;
     standing.dataset.warned = which;
     await new Promise((go) => setTimeout(go, 2000 * Math.random())); // not all pages at once
-    const answer = await fetch(location.href).catch(() => null);
-    if (!answer || !answer.ok) { standing.dataset.warned = ""; return; } // asked again when the link is back
-    const fresh = new DOMParser().parseFromString(await answer.text(), "text/html").getElementById("standing");
-    if (!fresh) return;
+    const fresh = (await anew())?.getElementById("standing");
+    if (!fresh) { standing.dataset.warned = ""; return; } // asked again when the link is back
     if (standing.querySelector("details[open]")) fresh.querySelector("details")?.setAttribute("open", "");
     standing.replaceChildren(...fresh.childNodes);
   }
 
+  // anew is this page as the agent would give it now, null where it does not.
+  async function anew() {
+    const answer = await fetch(location.href).catch(() => null);
+    return answer && answer.ok ? new DOMParser().parseFromString(await answer.text(), "text/html") : null;
+  }
+
+  // rescale puts the duty line of another scale in the place of one that a figure has left.
+  let scaled = 0;
+  async function rescale() {
+    if (Date.now() - scaled < 10000) return;
+    scaled = Date.now();
+    const page = await anew();
+    if (!page) return;
+    for (const [i, x] of bands) {
+      const line = x.beyond && page.querySelector(`.band[data-i="${i}"] .line`);
+      if (!line) continue;
+      const [a, b] = line.querySelectorAll(".bracket");
+      x.line.replaceWith(line);
+      Object.assign(x, { line, a, b, low: +line.dataset.low, high: +line.dataset.high, lens: line.querySelector(".lens"), notch: line.querySelector(".notch"), beyond: false });
+      say(x);
+    }
+  }
+
   const find = document.querySelector("#filter input[name=find]");
   const hidden = document.getElementById("hidden");
-  const before = form ? +(hidden.textContent.match(/^\d+/) || [0])[0] : 0; // that the agent has left out
+  const nothing = document.getElementById("nothing");
   function filter() {
     if (!form) return;
     const name = find.value.toLowerCase();
     const wanted = boxes.filter((b) => b.checked).map((b) => b.value);
-    let out = before;
+    let out = 0;
     for (const x of bands.values()) {
       const shown = x.el.dataset.load.toLowerCase().includes(name) && (wanted.length === 0 || wanted.includes(x.el.dataset.verdict));
       if (x.el.hidden === shown) x.el.hidden = !shown;
@@ -119,10 +142,16 @@
     }
     const text = out === 0 ? "" : out + (out === 1 ? " load left out" : " loads left out");
     if (hidden.textContent !== text) hidden.textContent = text;
+    if (nothing) nothing.hidden = out < bands.size;
+  }
+  // kept has the filter in the address, so that a link to it can be sent.
+  function kept() {
+    const q = new URLSearchParams([...new FormData(form)].filter(([, text]) => text !== ""));
+    history.replaceState(null, "", location.pathname + (q.size > 0 ? "?" + q : ""));
   }
   if (form) {
-    form.addEventListener("input", filter);
-    form.querySelector("button").hidden = before === 0; // it filters as one types what is on the sheet
+    form.addEventListener("input", () => { filter(); kept(); });
+    form.querySelector("button").hidden = true; // it filters as one types
   }
 
   // The link to the agent.
