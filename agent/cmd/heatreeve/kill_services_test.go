@@ -289,7 +289,8 @@ func (a *agentUnderTest) accounts(t *testing.T, load string) (minutes, report st
 	return out("export"), apart(t, out("report", "--by", "hour", "--from", "2020-01-01"), &a.events)
 }
 
-// apart takes the events out of a report, which are those of the agent's own life.
+// apart takes the events out of a report, which are those of the agent's own life, and the site
+// file, which has a client of its own for each agent.
 func apart(t *testing.T, text string, events *[]answer.Event) string {
 	t.Helper()
 	var r answer.Report
@@ -297,11 +298,15 @@ func apart(t *testing.T, text string, events *[]answer.Event) string {
 		t.Fatal(err)
 	}
 	*events = r.Events
+	if len(r.SiteFiles) != 1 {
+		t.Errorf("%d site files are told, want the one: %v", len(r.SiteFiles), r.SiteFiles)
+	}
 	var all map[string]any
 	if err := json.Unmarshal([]byte(text), &all); err != nil {
 		t.Fatal(err)
 	}
 	delete(all, "events")
+	delete(all, "site_files")
 	rest, err := json.Marshal(all)
 	if err != nil {
 		t.Fatal(err)
