@@ -6,16 +6,8 @@ import (
 	"heatreeve/agent/site"
 )
 
-// expectationsOf is what is expected of each load of a site; nil where it has no design, and
-// where an exchanger tells.
-func expectationsOf(s *site.Site) []expect.Expectation {
-	all := make([]expect.Expectation, len(s.Loads))
-	for i := range s.Loads {
-		all[i] = expectationOf(s, &s.Loads[i].Design)
-	}
-	return all
-}
-
+// expectationOf is what is expected of a load by its design; nil where it has none, and where an
+// exchanger tells.
 func expectationOf(s *site.Site, d *site.Design) expect.Expectation {
 	switch {
 	case d.Duty != 0:

@@ -22,7 +22,10 @@ func halls(t *testing.T) *site.Site {
 // What the site file says is what is expected: by hand, of the example's figures.
 func TestExpectationsOfASite(t *testing.T) {
 	s := halls(t)
-	all := expectationsOf(s)
+	all := make([]expect.Expectation, len(s.Loads))
+	for i := range s.Loads {
+		all[i] = expectationOf(s, &s.Loads[i].Design)
+	}
 	// heating at 1.4 °C and 71 %, Monday at 3: 412 + 21.2·((15.8 − 1.4) − 9.4) + hours[3]
 	cold := expect.Conditions{Hour: 3, Drivers: []float64{274.55, 0.71}}
 	want := 412e3 + 21.2e3*5 + s.Loads[0].Design.Baseline.Hours[3]
