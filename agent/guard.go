@@ -8,13 +8,14 @@ import (
 	"net/netip"
 	"strings"
 
+	"heatreeve/agent/access"
 	"heatreeve/agent/answer"
 )
 
 // guard is who may look at what the agent shows, and what they may do.
 type guard struct {
 	file   string // web configuration; "" for none
-	terms  terms
+	terms  access.Terms
 	openly bool
 }
 
@@ -26,7 +27,7 @@ func newGuard(o Options) (guard, error) {
 		return g, fmt.Errorf("--listen %q: %s; write host:port", o.Listen, strings.TrimPrefix(err.Error(), "address "+o.Listen+": "))
 	}
 	if g.file != "" {
-		if g.terms, err = checkWebConfig(g.file); err != nil {
+		if g.terms, err = access.Check(g.file); err != nil {
 			return g, err
 		}
 	}
@@ -36,7 +37,7 @@ func newGuard(o Options) (guard, error) {
 // covers is an error where others than this machine could look at a host, and nobody would be
 // asked.
 func (g *guard) covers(host, listen string) error {
-	if g.terms.authenticates() || g.openly || within(host) {
+	if g.terms.Authenticates() || g.openly || within(host) {
 		return nil
 	}
 	return fmt.Errorf("--listen %q: others than this machine could look there, and nobody would be asked who they are; "+
@@ -65,7 +66,7 @@ func (g *guard) opened(at net.Addr, log *slog.Logger) error {
 	if err != nil {
 		return err
 	}
-	if g.terms.password && !g.terms.tls && !within(host) {
+	if g.terms.Password && !g.terms.TLS && !within(host) {
 		log.Warn("passwords go over the network unencrypted; give the web configuration a tls_server_config", "web_config", g.file, "address", at.String())
 	}
 	return g.covers(host, at.String())
@@ -74,7 +75,7 @@ func (g *guard) opened(at net.Addr, log *slog.Logger) error {
 // url is where a reader finds what listens at an address.
 func (g *guard) url(at net.Addr) string {
 	scheme, host := "http", at.String()
-	if g.terms.tls {
+	if g.terms.TLS {
 		scheme = "https"
 	}
 	if a, err := netip.ParseAddrPort(host); err == nil && a.Addr().IsUnspecified() {
@@ -100,7 +101,7 @@ func (g *guard) front(h http.Handler) http.Handler {
 			w.Header().Set(name, value)
 		}
 		switch {
-		case !g.openly && !g.terms.authenticates() && !toLoopback(r.Host):
+		case !g.openly && !g.terms.Authenticates() && !toLoopback(r.Host):
 			// A page from elsewhere may have its own name lead here, to be told what its reader is told
 			// (DNS rebinding); to the browser it is all one site.
 			turnAway(w, r, http.StatusMisdirectedRequest, fmt.Sprintf("%q is no name of this machine's loopback: ask for http://localhost or http://127.0.0.1 with the port; "+
@@ -130,19 +131,4 @@ func toLoopback(hostPort string) bool {
 		host = strings.TrimSuffix(strings.TrimPrefix(hostPort, "["), "]")
 	}
 	return within(host)
-}
-
-// behind stands behind the passwords, and sees to it that they are still asked for: the file is
-// read anew for each request.
-func (g *guard) behind(h http.Handler) http.Handler {
-	if !g.terms.authenticates() {
-		return h
-	}
-	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
-		if now, _, err := readTerms(g.file); err != nil || !now.authenticates() {
-			turnAway(w, r, http.StatusServiceUnavailable, "the web configuration no longer asks for passwords or the certificates of clients, as it did at the start; put them back, or start the agent anew")
-			return
-		}
-		h.ServeHTTP(w, r)
-	})
 }

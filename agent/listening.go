@@ -9,8 +9,7 @@ import (
 	"net/http"
 	"time"
 
-	"github.com/prometheus/exporter-toolkit/web"
-
+	"heatreeve/agent/access"
 	"heatreeve/agent/metrics"
 )
 
@@ -60,16 +59,13 @@ const sparingEvery = 10 * time.Second
 
 // serve answers everybody on l until ctx ends, as far as the guard lets them.
 func (g *guard) serve(ctx context.Context, l *places, h http.Handler, log slog.Handler) error {
-	server := newServer(g.behind(h), log)
-	// The toolkit puts its passwords before the handler as it begins. What stands before these in
-	// turn is put there when the server asks for its context: after that, and before the first
-	// connection.
-	server.BaseContext = func(net.Listener) context.Context {
-		server.Handler = g.front(server.Handler)
-		return context.Background()
-	}
+	server := newServer(g.front(access.Door(g.file, g.terms, h, turnAway, slog.New(log))), log)
 	return until(ctx, server, l, func() error {
-		return web.Serve(l, server, &web.FlagConfig{WebConfigFile: &g.file}, slog.New(log))
+		if !g.terms.TLS {
+			return server.Serve(l)
+		}
+		server.TLSConfig = access.TLS(g.file)
+		return server.ServeTLS(l, "", "")
 	})
 }
 

@@ -106,12 +106,27 @@ func TestBehindTLSAndAPassword(t *testing.T) {
 	if _, _, err := s.look(t, newAuthority(t).client(t, ""), "/", "right"); err == nil || !strings.Contains(err.Error(), "unknown authority") {
 		t.Errorf("by another authority: %v", err)
 	}
+	before := peer(t, s, trusts)
+	a.issue(t, "agent")
+	if after := peer(t, s, trusts); bytes.Equal(before, after) {
+		t.Error("the certificate that was renewed is not shown")
+	}
 	plain, err := http.Get("http://" + s.at.String() + "/metrics")
 	if err != nil || plain.StatusCode != http.StatusBadRequest {
 		t.Errorf("without TLS: %+v, %v", plain, err)
 	}
 	plain.Body.Close()
 	checkCommandLine(t, s.data)
+}
+
+// peer is the certificate that the agent shows of itself.
+func peer(t *testing.T, s *shown, c *tls.Config) []byte {
+	t.Helper()
+	resp, _, err := s.look(t, c, "/healthz", "right")
+	if err != nil {
+		t.Fatal(err)
+	}
+	return resp.TLS.PeerCertificates[0].Raw
 }
 
 // Clients that show a certificate of the authority need no password, and others are not heard.
