@@ -152,10 +152,7 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 	defer endSession()
 	g, ctx := errgroup.WithContext(ctx)
 	explains := newExplains(reports, a.site, a.questions)
-	page, err := page.New(newDesk(&a.health, reports, explains), page.Options{Site: a.site, Version: a.o.Version, Safety: Safety, Ended: ctx.Done()})
-	if err != nil {
-		return err
-	}
+	page := page.New(newDesk(&a.health, reports, explains), page.Options{Site: a.site, Version: a.o.Version, Safety: Safety, Ended: ctx.Done()})
 	a.page.Store(page)
 	through := books.through.Load()
 	g.Go(func() error {

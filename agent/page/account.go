@@ -52,14 +52,14 @@ func dateFieldOf(name, text string) dateField {
 
 // account answers with the account of a time, to be read or printed.
 func (p *Page) account(w http.ResponseWriter, r *http.Request) {
-	status, body, err := p.accountText(r)
+	status, body := p.accountText(r)
 	if status == http.StatusServiceUnavailable {
 		w.Header().Set("Retry-After", "5")
 	}
-	send(w, r, status, body, err)
+	send(w, r, status, body)
 }
 
-func (p *Page) accountText(r *http.Request) (status int, body []byte, err error) {
+func (p *Page) accountText(r *http.Request) (status int, body string) {
 	x := accountPage{frame: p.frameOf(r, "Account", accountParameters...), Made: p.Now().In(p.Site.Zone)}
 	x.Look = append(x.Look, "account.css")
 	q, err := p.accountQuery(r.URL.Query())
@@ -83,8 +83,7 @@ func (p *Page) accountText(r *http.Request) (status int, body []byte, err error)
 	if report != nil {
 		x.fill(&q, report)
 	}
-	body, err = p.text("account.html", &x)
-	return status, body, err
+	return status, accountView(&x)
 }
 
 // oneAccount is the report for an account when its turn has come, and what gives the turn on: one

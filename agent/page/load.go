@@ -84,7 +84,7 @@ func (p *Page) oneLoad(w http.ResponseWriter, r *http.Request) {
 			x.Sheet = sheet
 		}
 	}
-	p.render(w, r, status, "load.html", &x)
+	send(w, r, status, loadView(&x))
 }
 
 // sheetOf reads an address; where it is wrong, the sheet is that of what of it is right, and the

@@ -144,10 +144,7 @@ func fakeWorking() *working.Working {
 // page is the page of the invented plant.
 func (p *fakePlant) page(t *testing.T) *Page {
 	t.Helper()
-	x, err := New(p, Options{Site: p.site, Version: "test", Safety: "Heatreeve informs."})
-	if err != nil {
-		t.Fatal(err)
-	}
+	x := New(p, Options{Site: p.site, Version: "test", Safety: "Heatreeve informs."})
 	return x
 }
 

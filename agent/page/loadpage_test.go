@@ -286,7 +286,7 @@ func TestLoadsThatAreNone(t *testing.T) {
 		t.Errorf("status %d: %s", w.Code, w.Body)
 	}
 	w := get(p.page(t), "/loads/milk?span=2h&duty=furlong")
-	if w.Code != http.StatusBadRequest || !strings.Contains(w.Body.String(), "duty &#34;furlong&#34; is no unit") {
+	if w.Code != http.StatusBadRequest || !strings.Contains(w.Body.String(), "duty &quot;furlong&quot; is no unit") {
 		t.Errorf("status %d: %s", w.Code, w.Body)
 	}
 	p.snapshot = nil

@@ -5,14 +5,17 @@
 // that a link can be sent. Without script the sheet of loads and the account are whole, but
 // stand still. All text of figures is made here ([shown]), so that the script has no digits of
 // its own: it puts what the event stream says in its place.
+//
+// What a page looks like stands in *.qtpl, which are compiled to Go: x is what is shown,
+// {%s escapes a text for HTML, {%u one within an address as well, {%= takes in another view.
 package page
 
+//go:generate go tool qtc -skipLineComments
+
 import (
-	"bytes"
-	"embed"
 	"encoding/hex"
 	"fmt"
-	"html/template"
+	"io"
 	"net/http"
 	"net/url"
 	"strings"
@@ -21,32 +24,23 @@ import (
 	"heatreeve/agent/shown"
 )
 
-//go:embed templates/*.html
-var templateFiles embed.FS
-
 // Page answers for everything but the JSON interface and what supervisors ask for.
 type Page struct {
 	Source
 	Options
-	usual     shown.Units // of the site
-	templates *template.Template
-	mux       *http.ServeMux
-	feed      feed
-	streams   atomic.Int64 // that are open
-	ribbons   ribbons
-	accounts  chan struct{} // holds one while an account is in the making
+	usual    shown.Units // of the site
+	mux      *http.ServeMux
+	feed     feed
+	streams  atomic.Int64 // that are open
+	ribbons  ribbons
+	accounts chan struct{} // holds one while an account is in the making
 }
 
 // New returns the page of a site.
-func New(source Source, o Options) (*Page, error) {
+func New(source Source, o Options) *Page {
 	p := &Page{Source: source, Options: o, usual: o.Site.Shown, accounts: make(chan struct{}, 1)}
 	p.feed.init()
 	p.ribbons.init()
-	t, err := template.New("").Funcs(template.FuncMap{"spaced": spaced}).ParseFS(templateFiles, "templates/*.html")
-	if err != nil {
-		return nil, err
-	}
-	p.templates = t
 	p.mux = http.NewServeMux()
 	p.mux.HandleFunc("GET /", p.lost)
 	p.mux.HandleFunc("GET /{$}", p.sheet)
@@ -57,7 +51,7 @@ func New(source Source, o Options) (*Page, error) {
 	p.mux.HandleFunc("GET /ribbon.svg", p.ribbonImage)
 	p.mux.HandleFunc("GET /api/v1/stream", p.stream)
 	p.mux.Handle("GET /assets/", assets())
-	return p, nil
+	return p
 }
 
 func (p *Page) ServeHTTP(w http.ResponseWriter, r *http.Request) { p.mux.ServeHTTP(w, r) }
@@ -66,7 +60,7 @@ func (p *Page) ServeHTTP(w http.ResponseWriter, r *http.Request) { p.mux.ServeHT
 func (p *Page) lost(w http.ResponseWriter, r *http.Request) {
 	f := p.frameOf(r, "Not found")
 	f.Script, f.Fault = nil, fmt.Sprintf("There is no page at %q.", r.URL.Path)
-	p.render(w, r, http.StatusNotFound, "lost.html", &f)
+	send(w, r, http.StatusNotFound, lostView(&f))
 }
 
 // frame is what all pages have around their content.
@@ -136,35 +130,16 @@ func (f *frame) LoadLink(load string, parameters ...string) string {
 // spaced sets a text that has lines in one.
 func spaced(text string) string { return strings.Join(strings.Fields(text), " ") }
 
-// render writes a page, whole or not at all.
-func (p *Page) render(w http.ResponseWriter, r *http.Request, status int, name string, data any) {
-	body, err := p.text(name, data)
-	send(w, r, status, body, err)
-}
-
-// text is a page as it is sent.
-func (p *Page) text(name string, data any) ([]byte, error) {
-	var b bytes.Buffer
-	if err := p.templates.ExecuteTemplate(&b, name, data); err != nil {
-		return nil, fmt.Errorf("page %s: %w", name, err)
-	}
-	return b.Bytes(), nil
-}
-
-// send writes a page, or why there is none.
-func send(w http.ResponseWriter, r *http.Request, status int, body []byte, err error) {
-	if err != nil {
-		http.Error(w, err.Error(), http.StatusInternalServerError)
-		return
-	}
+// send writes a page.
+func send(w http.ResponseWriter, r *http.Request, status int, body string) {
 	w.Header().Set("Cache-Control", "no-store")
 	if status == http.StatusOK {
-		Answer(w, r, "text/html; charset=utf-8", body)
+		Answer(w, r, "text/html; charset=utf-8", []byte(body))
 		return
 	}
 	w.Header().Set("Content-Type", "text/html; charset=utf-8")
 	w.WriteHeader(status)
-	_, _ = w.Write(body) // who asked has gone
+	_, _ = io.WriteString(w, body) // who asked has gone
 }
 
 // UnitFields are the parameters of the units, for a form that keeps them.

@@ -1,7 +1,6 @@
 package page
 
 import (
-	"bytes"
 	"context"
 	"encoding/json"
 	"fmt"
@@ -87,10 +86,5 @@ func (p *Page) ribbonImage(w http.ResponseWriter, r *http.Request) {
 		http.Error(w, err.Error(), http.StatusNotFound)
 		return
 	}
-	var b bytes.Buffer
-	if err := p.templates.ExecuteTemplate(&b, "ribbon.svg", x); err != nil {
-		http.Error(w, err.Error(), http.StatusInternalServerError)
-		return
-	}
-	Answer(w, r, "image/svg+xml", b.Bytes())
+	Answer(w, r, "image/svg+xml", []byte(ribbonImageView(x)))
 }

@@ -58,7 +58,7 @@ func (p *Page) sheet(w http.ResponseWriter, r *http.Request) {
 	if x.Fault != "" {
 		status = http.StatusBadRequest
 	}
-	p.render(w, r, status, "sheet.html", &x)
+	send(w, r, status, sheetView(&x))
 }
 
 // exchangerLine is an exchanger in a line.

@@ -65,10 +65,7 @@ func mill(t testing.TB, all ...view.Load) (*Page, *fixed) {
 		s.Loads = append(s.Loads, site.HeatLoad{Name: all[i].Name, Stream: &site.Stream{Gives: i%2 == 0}})
 	}
 	source := &fixed{now: noon, snapshot: &view.Snapshot{Site: "Mill", At: noon.UnixNano(), Loads: all, Broker: view.Broker{Connected: true}}}
-	p, err := New(source, Options{Site: s, Version: "test", Safety: "No safety\nfunction."})
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := New(source, Options{Site: s, Version: "test", Safety: "No safety\nfunction."})
 	return p, source
 }
 

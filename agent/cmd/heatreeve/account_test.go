@@ -37,10 +37,7 @@ func reader(t *testing.T, data string) func(path string) (status int, body strin
 	if err != nil {
 		t.Fatal(err)
 	}
-	p, err := page.New(&archive{data: data}, page.Options{Site: s, Version: "test", Safety: agent.Safety})
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := page.New(&archive{data: data}, page.Options{Site: s, Version: "test", Safety: agent.Safety})
 	return func(path string) (int, string) {
 		w := httptest.NewRecorder()
 		p.ServeHTTP(w, httptest.NewRequest(http.MethodGet, path, nil))
