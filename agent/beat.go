@@ -3,6 +3,7 @@ package agent
 import (
 	"context"
 	"fmt"
+	"runtime/debug"
 	"slices"
 	"time"
 
@@ -66,6 +67,7 @@ func (r *rhythm) wakeful() bool {
 func (a *Agent) beats(ctx context.Context, books *ledger) error {
 	notify("READY=1")
 	defer notify("STOPPING=1")
+	debug.FreeOSMemory() // what only the start needed
 	r := a.newRhythm(books, time.Now())
 	a.tellFuture(r.pace.through)
 	a.endMetrics(r, books.accounts.engine.Snapshot())
