@@ -32,7 +32,7 @@ var targets = []target{
 
 // sizeBound is what a gateway's small flash can spare. Templates of pages, which the linker
 // cannot see through, and the web configuration of exporters take 4 MiB of it.
-const sizeBound = 22 << 20
+const sizeBound = 20 << 20
 
 // builds holds the binaries made here for a run without deploy/test; TestMain removes them.
 var builds struct {
