@@ -30,8 +30,7 @@ var targets = []target{
 	{"armv7", "HEATREEVE_BIN_ARM", elf.ELFCLASS32, elf.EM_ARM, "arm"},
 }
 
-// sizeBound is what a gateway's small flash can spare. Templates of pages, which the linker
-// cannot see through, and the web configuration of exporters take 4 MiB of it.
+// sizeBound is what a gateway's small flash can spare.
 const sizeBound = 20 << 20
 
 // builds holds the binaries made here for a run without deploy/test; TestMain removes them.
