@@ -36,6 +36,7 @@ var arrows = map[string][]string{
 		"agent/loads",
 	},
 	"agent/access": {},
+	"agent/figure": {},
 	"agent/answer": {"agent/account", "agent/loads", "agent/warn"},
 	"agent/shown":  {"thermo/unit"},
 	"agent/page": {
@@ -46,12 +47,12 @@ var arrows = map[string][]string{
 	"agent/proving": {
 		"agent/site", "agent/loads", "ingest/quality", "thermo/unit",
 	},
-	"agent/working": {"agent/loads", "agent/design", "agent/design/...", "agent/site", "ingest/quality", "thermo", "thermo/unit"},
+	"agent/working": {"agent/figure", "agent/loads", "agent/design", "agent/design/...", "agent/site", "ingest/quality", "thermo", "thermo/unit"},
 	"agent/survey": {
 		"agent/site", "ingest", "ingest/quality", "ingest/sparkplug", "thermo/unit",
 	},
 	"agent/metrics": {
-		"agent/view", "agent/warn", "agent/loads", "agent/design", "ingest/quality",
+		"agent/figure", "agent/view", "agent/warn", "agent/loads", "agent/design", "ingest/quality",
 	},
 	"agent/relay": {"agent/view", "agent/warn", "agent/loads", "ingest/quality"},
 	"agent/demo": {

@@ -14,6 +14,7 @@ import (
 	dto "github.com/prometheus/client_model/go"
 
 	"heatreeve/agent/design"
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/view"
 	"heatreeve/agent/warn"
@@ -24,8 +25,8 @@ import (
 var windowNames = [len(loads.Windows)]string{"1m", "15m", "1h"}
 
 var (
-	duty        = desc("load_duty_watts", "Heat duty at the last beat, positive in the load's own service; absent while the load is blind.", "load")
-	uncertainty = desc("load_duty_uncertainty_watts", "Standard uncertainty of the duty (coverage factor 1).", "load")
+	duty        = desc("load_duty_watts", figure.Duty.Help(" at the last beat, positive in the load's own service; absent while the load is blind"), "load")
+	uncertainty = desc("load_duty_uncertainty_watts", figure.Uncertainty.Help(" (coverage factor 1)"), "load")
 	random      = desc("load_duty_random_uncertainty_watts", "Part of the standard uncertainty of the duty that changes from reading to reading, and averages out.", "load")
 	dutyMean    = desc("load_duty_mean_watts", "Rolling mean of the duty over the measured part of the window.", "load", "window")
 	coverage    = desc("load_coverage_ratio", "Part of the window that was measured, 0 to 1.", "load", "window")
@@ -35,17 +36,17 @@ var (
 	doubtful    = desc("load_uncertain_seconds_total", "Part of the measured time for which an uncertain reading was used, as last committed to disk; survives restarts.", "load")
 	grade       = desc("load_quality", "1 for the quality of the figure, the worst of the readings that it was computed from, 0 for the others; bad while the load is blind.", "load", "quality")
 	latent      = desc("load_latent", "1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.", "load")
-	massFlow    = desc("load_mass_flow_kilograms_per_second", "Mass flow that the duty was computed from.", "load")
-	inlet       = desc("load_inlet_celsius", "Inlet temperature that the duty was computed from.", "load")
-	outlet      = desc("load_outlet_celsius", "Outlet temperature that the duty was computed from.", "load")
-	content     = desc("load_content_celsius", "Temperature of a vessel's content that the duty was computed from.", "load")
+	massFlow    = desc("load_mass_flow_kilograms_per_second", figure.MassFlow.Help(" that the duty was computed from"), "load")
+	inlet       = desc("load_inlet_celsius", figure.Inlet.Help(" that the duty was computed from"), "load")
+	outlet      = desc("load_outlet_celsius", figure.Outlet.Help(" that the duty was computed from"), "load")
+	content     = desc("load_content_celsius", figure.Content.Help(" of a vessel, that the duty was computed from"), "load")
 	counted     = desc("load_witness_counted_joules", "Heat that the load's witness has counted since midnight by the clock of the site, in spans between two of its counts that were measured throughout.", "load")
 	served      = desc("load_witness_served_joules", "Heat that the load has served in the same spans as its witness has counted since midnight, positive in the load's own service.", "load")
 	deviation   = desc("load_witness_deviation_ratio", "How far the load is above its witness since midnight, as a fraction of what that has counted; absent until it has counted anything.", "load")
-	expected    = desc("load_expected_duty_watts", "Duty that the design expects at the conditions of the last minute.", "load")
-	expectedU   = desc("load_expected_duty_uncertainty_watts", "Standard uncertainty of what is expected, by what lasts.", "load")
-	off         = desc("load_deviation_watts", "Mean duty less what was expected of it, over the last minutes that a deviation must last.", "load")
-	offU        = desc("load_deviation_uncertainty_watts", "Standard uncertainty of that deviation.", "load")
+	expected    = desc("load_expected_duty_watts", figure.Expected.Help(", what the design says of the conditions of the last minute"), "load")
+	expectedU   = desc("load_expected_duty_uncertainty_watts", figure.ExpectedUncertainty.Help(""), "load")
+	off         = desc("load_deviation_watts", figure.Deviation.Help(": mean duty less what was expected of it, over the last minutes that a deviation must last"), "load")
+	offU        = desc("load_deviation_uncertainty_watts", figure.DeviationUncertainty.Help(""), "load")
 	verdict     = desc("load_verdict", "1 for the verdict that stands, 0 for the others.", "load", "verdict")
 
 	warnActive = desc("warning_active", "1 while the warning stands, 0 otherwise; of each kind that there can be on the subject.", "subject", "kind")

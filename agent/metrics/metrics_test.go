@@ -53,11 +53,11 @@ func registry(s *view.Snapshot, now int64) prometheus.Gatherer {
 
 func TestFigures(t *testing.T) {
 	want := `
-# HELP heatreeve_load_duty_watts Heat duty at the last beat, positive in the load's own service; absent while the load is blind.
+# HELP heatreeve_load_duty_watts Duty at the last beat, positive in the load's own service; absent while the load is blind. It is Q in the working of heatreeve explain.
 # TYPE heatreeve_load_duty_watts gauge
 heatreeve_load_duty_watts{load="hot-water"} 500000
 heatreeve_load_duty_watts{load="spare"} 0
-# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from.
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain.
 # TYPE heatreeve_load_inlet_celsius gauge
 heatreeve_load_inlet_celsius{load="hot-water"} 130
 # HELP heatreeve_load_coverage_ratio Part of the window that was measured, 0 to 1.
@@ -82,7 +82,7 @@ heatreeve_load_witness_deviation_ratio{load="hot-water"} -0.25
 # TYPE heatreeve_load_witness_served_joules gauge
 heatreeve_load_witness_served_joules{load="dryer"} 0
 heatreeve_load_witness_served_joules{load="hot-water"} 1.5e+09
-# HELP heatreeve_load_expected_duty_watts Duty that the design expects at the conditions of the last minute.
+# HELP heatreeve_load_expected_duty_watts Expected duty, what the design says of the conditions of the last minute. It is Qd in the working of heatreeve explain.
 # TYPE heatreeve_load_expected_duty_watts gauge
 heatreeve_load_expected_duty_watts{load="hot-water"} 640000
 # HELP heatreeve_tag_reading_timestamp_seconds Unix time of the newest accepted reading.
@@ -204,17 +204,17 @@ func TestVessel(t *testing.T) {
 	s := snapshot()
 	s.Loads[2].Figure = loads.Figure{At: instant, Duty: 40e3, Uncertainty: 900, Random: 800, Content: 338.15, Mass: 12e3, Idle: true}
 	want := `
-# HELP heatreeve_load_content_celsius Temperature of a vessel's content that the duty was computed from.
+# HELP heatreeve_load_content_celsius Temperature of the content of a vessel, that the duty was computed from. It is T in the working of heatreeve explain.
 # TYPE heatreeve_load_content_celsius gauge
 heatreeve_load_content_celsius{load="spare"} 65
 # HELP heatreeve_load_duty_random_uncertainty_watts Part of the standard uncertainty of the duty that changes from reading to reading, and averages out.
 # TYPE heatreeve_load_duty_random_uncertainty_watts gauge
 heatreeve_load_duty_random_uncertainty_watts{load="hot-water"} 2000
 heatreeve_load_duty_random_uncertainty_watts{load="spare"} 800
-# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from.
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain.
 # TYPE heatreeve_load_inlet_celsius gauge
 heatreeve_load_inlet_celsius{load="hot-water"} 130
-# HELP heatreeve_load_mass_flow_kilograms_per_second Mass flow that the duty was computed from.
+# HELP heatreeve_load_mass_flow_kilograms_per_second Mass flow that the duty was computed from. It is m in the working of heatreeve explain.
 # TYPE heatreeve_load_mass_flow_kilograms_per_second gauge
 heatreeve_load_mass_flow_kilograms_per_second{load="hot-water"} 3
 `
@@ -247,7 +247,7 @@ heatreeve_history_damaged_records_total 3
 // blind, though the snapshot is from before.
 func TestRunOutFigureIsAbsent(t *testing.T) {
 	want := `
-# HELP heatreeve_load_duty_watts Heat duty at the last beat, positive in the load's own service; absent while the load is blind.
+# HELP heatreeve_load_duty_watts Duty at the last beat, positive in the load's own service; absent while the load is blind. It is Q in the working of heatreeve explain.
 # TYPE heatreeve_load_duty_watts gauge
 heatreeve_load_duty_watts{load="hot-water"} 500000
 heatreeve_load_duty_watts{load="spare"} 0

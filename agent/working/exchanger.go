@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"heatreeve/agent/design/exchanger"
+	"heatreeve/agent/figure"
 )
 
 // Exchanger is that whose clean duty is expected of a load, in the state of the last minute.
@@ -43,7 +44,7 @@ func (p *page) clean(x *Exchanger) (term, bool) {
 		duty += x.Loss
 		q = q.plus(p.given("L", "loss to the surroundings", x.Loss/1e3, "kW", place(x.Loss/1e3, 10), "site file"))
 	}
-	return p.worked("Qd", "duty of the clean exchanger, "+x.Name, q, duty/1e3, "kW", place(duty/1e3, fine), ""), true
+	return p.worked(figure.Expected.Symbol, "duty of the clean exchanger, "+x.Name, q, duty/1e3, "kW", place(duty/1e3, fine), ""), true
 }
 
 // capacity writes the capacity rate of a side, kW/K, and its inlet.

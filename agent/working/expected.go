@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"heatreeve/agent/design/expect"
+	"heatreeve/agent/figure"
 )
 
 // expected writes what is expected of the last minute, and how.
@@ -29,7 +30,7 @@ func (p *page) expected() {
 			duty = p.plainly()
 		}
 	case expect.Fixed:
-		duty = p.given("Qd", "design duty", x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "site file")
+		duty = p.given(figure.Expected.Symbol, "design duty", x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "site file")
 	case expect.Table:
 		duty, relative = p.table(&of), of.Uncertainty
 	case expect.Week:
@@ -46,18 +47,17 @@ func (p *page) expected() {
 // plainly writes what is expected without how.
 func (p *page) plainly() term {
 	q := p.Grounds.Today.Duty / 1e3
-	return p.given("Qd", "expected at the conditions of the last minute", q, "kW", place(q, 10), "")
+	return p.given(figure.Expected.Symbol, "expected at the conditions of the last minute", q, "kW", place(q, 10), "")
 }
 
 // doubt writes how unsure the expectation is.
 func (p *page) doubt(duty term, relative float64) {
 	x := &p.Grounds.Today
-	const words = "its standard uncertainty, by what lasts"
 	switch {
 	case x.Lasting > 0 && relative > 0 && duty.value > 0:
-		p.worked("ud", words, named("uncertainty", relative).times(duty), x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
+		p.worked(figure.ExpectedUncertainty.Symbol, figure.ExpectedUncertainty.Words, named("uncertainty", relative).times(duty), x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
 	case x.Lasting > 0:
-		p.given("ud", words, x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
+		p.given(figure.ExpectedUncertainty.Symbol, figure.ExpectedUncertainty.Words, x.Lasting/1e3, "kW", place(x.Lasting/1e3, coarse), "")
 	}
 	if x.Random > 0 {
 		r := math.Sqrt(x.Random) / 1e3
@@ -146,7 +146,7 @@ func hour(h int) string { return fmt.Sprintf("%s from %02d:00 on", weekdays[h/24
 
 func (p *page) week() term {
 	q := p.Grounds.Today.Duty / 1e3
-	return p.given("Qd", "duty of the hour of the week, "+hour(p.Grounds.By.Hour), q, "kW", place(q, 10), "site file")
+	return p.given(figure.Expected.Symbol, "duty of the hour of the week, "+hour(p.Grounds.By.Hour), q, "kW", place(q, 10), "site file")
 }
 
 // baseline writes the learned regression with its coefficients.
@@ -161,7 +161,7 @@ func (p *page) baseline(b *expect.Baseline) term {
 		q = q.plus(p.regressor(&b.Terms[k], fmt.Sprint(k+1), source))
 	}
 	w := p.Grounds.Today.Duty / 1e3
-	return p.worked("Qd", "expected duty", q, w, "kW", place(w, fine), "N. R. Draper and H. Smith, Applied Regression Analysis, 3rd ed., 1998")
+	return p.worked(figure.Expected.Symbol, figure.Expected.Words, q, w, "kW", place(w, fine), "N. R. Draper and H. Smith, Applied Regression Analysis, 3rd ed., 1998")
 }
 
 // regressor writes what one driver adds.

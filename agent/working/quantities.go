@@ -1,6 +1,7 @@
 package working
 
 import (
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/thermo"
 	"heatreeve/thermo/unit"
@@ -12,8 +13,12 @@ type quantity struct {
 	size                float64 // of the unit, in SI
 }
 
+func of(f figure.Figure, unit string, size float64) quantity {
+	return quantity{f.Symbol, f.Words, unit, size}
+}
+
 var flowSymbols = map[unit.Dimension]quantity{
-	unit.MassFlow:   {"m", "mass flow", "kg/s", 1},
+	unit.MassFlow:   of(figure.MassFlow, "kg/s", 1),
 	unit.VolumeFlow: {"V", "volume flow at the meter", "m3/s", 1},
 	unit.MolarFlow:  {"n", "molar flow", "mol/s", 1},
 }
@@ -31,13 +36,13 @@ var contents = map[unit.Dimension]quantity{
 }
 
 var quantities = map[string]quantity{
-	"inlet":           {"T1", "inlet temperature", "K", 1},
-	"outlet":          {"T2", "outlet temperature", "K", 1},
+	"inlet":           of(figure.Inlet, "K", 1),
+	"outlet":          of(figure.Outlet, "K", 1),
 	"pressure":        {"p1", "pressure at the inlet", "kPa", 1e3},
 	"outlet pressure": {"p2", "pressure at the outlet", "kPa", 1e3},
 	"coil":            {"Tc", "coldest surface of the coil", "K", 1},
 	"pump":            {"P", "heat of the pump", "kW", 1e3},
-	"temperature":     {"T", "temperature of the content", "K", 1},
+	"temperature":     of(figure.Content, "K", 1),
 }
 
 // quantity is that of an input of the load.

@@ -5,6 +5,7 @@ import (
 	"math"
 	"time"
 
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/ingest/quality"
 )
@@ -44,7 +45,7 @@ func OfRecord(r Record) *Working {
 	if (m.Given-m.Taken)*m.Duty < 0 {
 		net = taken.minus(given)
 	}
-	s.worked("Q", "mean duty, positive in the load's service", net.over(span), m.Duty/1e3, "kW", place(m.Duty/1e3, fine-1), "")
+	s.worked(figure.Duty.Symbol, "mean duty, positive in the load's service", net.over(span), m.Duty/1e3, "kW", place(m.Duty/1e3, fine-1), "")
 	s.given("Qmin", "least on the grid", m.DutyMin/1e3, "kW", place(m.DutyMin/1e3, fine-1), "")
 	s.given("Qmax", "greatest on the grid", m.DutyMax/1e3, "kW", place(m.DutyMax/1e3, fine-1), "")
 	s.spread(m, span)
@@ -92,6 +93,6 @@ func (s *sheet) spread(m *loads.Minute, span term) {
 	lasting, random := m.Doubt()
 	u := math.Sqrt(lasting*lasting + random)
 	s.Uncertainty = &u
-	standard := s.worked("u", "standard uncertainty of the mean duty", sum(squares(all)).root(), u/1e3, "kW", place(u/1e3, coarse), byLaw)
+	standard := s.worked(figure.Uncertainty.Symbol, "standard uncertainty of the mean duty", sum(squares(all)).root(), u/1e3, "kW", place(u/1e3, coarse), byLaw)
 	s.worked("U", "expanded, with the coverage factor 2", number(CoverageFactor).times(standard), CoverageFactor*u/1e3, "kW", place(u/1e3, coarse), "JCGM 100:2008, 6.3.3")
 }

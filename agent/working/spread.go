@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
 )
@@ -212,7 +213,7 @@ func (p *page) total(s *shares) {
 	if len(all) == 0 {
 		return
 	}
-	u := p.worked("u", "standard uncertainty of the duty", sum(all).root(), f.Uncertainty/1e3, "kW", place(f.Uncertainty/1e3, coarse), byLaw)
+	u := p.worked(figure.Uncertainty.Symbol, figure.Uncertainty.Words, sum(all).root(), f.Uncertainty/1e3, "kW", place(f.Uncertainty/1e3, coarse), byLaw)
 	p.worked("U", "expanded, with the coverage factor 2", number(CoverageFactor).times(u), CoverageFactor*f.Uncertainty/1e3, "kW", place(f.Uncertainty/1e3, coarse), "JCGM 100:2008, 6.3.3")
 	p.parts()
 }

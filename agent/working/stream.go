@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/thermo/unit"
 )
@@ -22,7 +23,7 @@ func (p *page) stream() {
 		rise, dx = h1.minus(h2), -dx
 	}
 	dh := p.worked("Δh", p.way(), rise, dx/1e3, "kJ/kg", p.enthalpyPlaces(), "")
-	symbol, words := "Q", "duty"
+	symbol, words := figure.Duty.Symbol, figure.Duty.Words
 	if b.Correction != 0 {
 		symbol, words = "Qs", "duty by flow and temperatures"
 	}
@@ -102,7 +103,7 @@ func (p *page) massFlow() term {
 	if f == flow {
 		return flow
 	}
-	return p.worked("m", "mass flow", f, m, "kg/s", place(m, fine), "")
+	return p.worked(figure.MassFlow.Symbol, figure.MassFlow.Words, f, m, "kg/s", place(m, fine), "")
 }
 
 // felt is by how much more or less flows than a meter by differential pressure shows.
@@ -134,7 +135,7 @@ func (p *page) corrected(q term) term {
 		p.at["stored"] = p.worked("Qst", "what this stores", C.times(rise), stored, "kW", place(b.Duty/1e3, fine-1), "")
 		f = less(f, p.at["stored"])
 	}
-	return p.worked("Q", "duty", f, b.Duty/1e3, "kW", place(b.Duty/1e3, fine-1), "")
+	return p.worked(figure.Duty.Symbol, figure.Duty.Words, f, b.Duty/1e3, "kW", place(b.Duty/1e3, fine-1), "")
 }
 
 // rise writes how fast the mean of the thermometers rises.

@@ -6,6 +6,7 @@ import (
 
 	"heatreeve/agent/design"
 	"heatreeve/agent/design/steady"
+	"heatreeve/agent/figure"
 )
 
 // verdict writes how the duty stands to what is expected, and why.
@@ -45,7 +46,7 @@ func (p *page) deviation() {
 		expected = p.given("En", "mean of what was expected of them", g.Expected/1e3, "kW", n, "minutes before")
 	}
 	p.worked("a", "allowance", named("allow", g.Target.Allow).times(expected), g.Allowance()/1e3, "kW", place(g.Allowance()/1e3, fine), "")
-	d := p.worked("d", "deviation", mean.minus(expected), g.Deviation/1e3, "kW", n, "")
+	d := p.worked(figure.Deviation.Symbol, figure.Deviation.Words, mean.minus(expected), g.Deviation/1e3, "kW", n, "")
 	p.given("dmin", "the least of a minute", g.Least/1e3, "kW", max(0, n), "")
 	p.given("dmax", "the greatest", g.Most/1e3, "kW", max(0, n), "")
 	p.significance(d)
@@ -61,7 +62,7 @@ func (p *page) significance(d term) {
 	s, r := g.Systematic/1e3, g.Random/1e3
 	lasting := p.given("sd", "standard uncertainty of the deviation, by what lasts", s, "kW", place(s, coarse+1), byLaw)
 	random := p.given("rn", "and by what averages out", r, "kW", place(r, coarse+1), byLaw)
-	u := p.worked("un", "both", sum(squares([]term{lasting, random})).root(), x, "kW", place(x, coarse+1), byLaw)
+	u := p.worked(figure.DeviationUncertainty.Symbol, figure.DeviationUncertainty.Words, sum(squares([]term{lasting, random})).root(), x, "kW", place(x, coarse+1), byLaw)
 	p.worked("Un", "expanded, with the coverage factor 2", number(CoverageFactor).times(u), CoverageFactor*x, "kW", place(x, coarse), "JCGM 100:2008, 6.3.3")
 	z := g.Deviation / g.Uncertainty()
 	p.worked("d/u", "deviation in standard uncertainties", d.over(u), z, "1", place(z, 3), "")

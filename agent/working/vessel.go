@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"heatreeve/agent/figure"
 	"heatreeve/agent/loads"
 	"heatreeve/thermo/unit"
 )
@@ -27,7 +28,7 @@ func (p *page) vessel() {
 	if v.Gives {
 		q = negative(q)
 	}
-	symbol, words := "Q", "duty"
+	symbol, words := figure.Duty.Symbol, figure.Duty.Words
 	if p.Basis.Figure.Idle {
 		symbol, words = "Qr", "duty by that rise"
 	}

@@ -14,6 +14,7 @@ import (
 	"unicode/utf8"
 
 	"heatreeve/agent"
+	"heatreeve/agent/figure"
 	"heatreeve/agent/site"
 	"heatreeve/agent/working"
 	"heatreeve/ingest/quality"
@@ -241,18 +242,27 @@ func sameNumbers(t *testing.T, l *printed, values map[string]string) {
 // Of every load of every example, each line of the working can be followed with a
 // calculator.
 func TestEveryWorkingCanBeFollowed(t *testing.T) {
+	met := map[figure.Figure]bool{}
 	for _, file := range siteFiles(t) {
 		p := play(t, file, nil)
 		for i := range p.site.Loads {
 			name := p.site.Loads[i].Name
 			out := explain(t, name, "--data", p.data)
 			n := followed(t, out)
+			for _, l := range linesOf(out) {
+				met[figure.Figure{Symbol: l.symbol, Words: l.words}] = true
+			}
 			if name == "cooling coil" && !(strings.Contains(out, "enthalpy, the sensible part, at the inlet") && strings.Contains(out, "note: sensible part only: coil at 6.9")) {
 				t.Errorf("the coil condenses, and nothing is said of it:\n%s", out)
 			}
 			if n < 10 || strings.Contains(out, "has no duty") {
 				t.Errorf("%s: %d formulas:\n%s", name, n, out)
 			}
+		}
+	}
+	for _, f := range figure.All {
+		if !met[f] {
+			t.Errorf("no working has the line %q, %q, to which a metric leads", f.Symbol, f.Words)
 		}
 	}
 }
