@@ -124,6 +124,11 @@ func signalsOf(s *site.Site) []ingest.Tag {
 		}
 		tags = append(tags, tag)
 	}
+	for i := range s.Loads {
+		if l := &s.Loads[i]; l.HasRunning {
+			tags[l.Running.Tag].Truth = tags[l.Running.Tag].Signal == nil
+		}
+	}
 	return tags
 }
 

@@ -172,3 +172,29 @@ func TestPlantOfTests(t *testing.T) {
 		}
 	}
 }
+
+// True and false are for the tag of a pump alone: of a temperature they are a mistake.
+func TestPumpsMayBeTrueOrFalse(t *testing.T) {
+	text, err := configs.Files.ReadFile("tarnholt-heat-works.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := site.Parse("tarnholt-heat-works.yaml", text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	pumps := map[string]bool{}
+	for i := range s.Loads {
+		if l := &s.Loads[i]; l.HasRunning {
+			pumps[s.Tags[l.Running.Tag].Name] = true
+		}
+	}
+	if len(pumps) == 0 {
+		t.Fatal("no load of the example names its pump")
+	}
+	for _, tag := range signalsOf(s) {
+		if tag.Truth != pumps[tag.Name] {
+			t.Errorf("tag %q takes true and false: %v", tag.Name, tag.Truth)
+		}
+	}
+}

@@ -288,6 +288,9 @@ func (d *Decoder) value(tag *Tag, w *wanted, at []found, payload []byte) (float6
 		return x, quality.None, f
 	}
 	if w.value < 0 {
+		if x, ok := tag.truth(string(bytes.Trim(payload, blanks))); ok {
+			return x, quality.None, nil
+		}
 		return bareNumber(payload)
 	}
 	switch v := at[w.value]; v.kind {
@@ -299,8 +302,23 @@ func (d *Decoder) value(tag *Tag, w *wanted, at []found, payload []byte) (float6
 	case 'n':
 		return math.NaN(), quality.NoValue, nil
 	default:
+		if x, ok := tag.truth(kindName(v.kind)); ok {
+			return x, quality.None, nil
+		}
 		return 0, quality.None, faultf(WrongType, "has %s at %q%s where a number should be; publish a number without quotes", kindName(v.kind), tag.Value, tag.ofSample())
 	}
+}
+
+// truth is what true or false is for the tag, in the unit of its numbers.
+func (t *Tag) truth(text string) (x float64, ok bool) {
+	switch {
+	case !t.Truth:
+	case text == "true":
+		return 1 / t.Scale, true
+	case text == "false":
+		return 0, true
+	}
+	return 0, false
 }
 
 // stamp fills in the instant of a reading: that of its source, or of its arrival.

@@ -6,6 +6,7 @@ import (
 	"sync"
 	"time"
 
+	"heatreeve/ingest/quality"
 	"heatreeve/ingest/sparkplug"
 )
 
@@ -139,14 +140,22 @@ func (p *plug) outcome(r *sparkplug.Reading, payload []byte, arrival int64) Outc
 }
 
 func (p *plug) fill(o *Reading, tag *Tag, r *sparkplug.Reading) *fault {
-	if r.Wrong != sparkplug.Right {
-		f := wrongs[r.Wrong]
+	wrong, x := r.Wrong, r.Value
+	switch {
+	case wrong != sparkplug.Right || !r.Truth:
+	case tag.Truth:
+		x /= tag.Scale
+	case r.Mark.Quality() != quality.Bad:
+		wrong = sparkplug.NotNumber
+	}
+	if wrong != sparkplug.Right {
+		f := wrongs[wrong]
 		return faultf(f.reason, f.detail, tag.Metric.Name, r.Datatype)
 	}
-	if f := tag.inSI(o, r.Value); f != nil {
+	if f := tag.inSI(o, x); f != nil {
 		return f
 	}
-	return tag.inRange(o, r.Value)
+	return tag.inRange(o, x)
 }
 
 // wrongs are the refusals of metrics; their details take the metric's name and datatype.

@@ -49,6 +49,10 @@ type Tag struct {
 	Offset float64 // SI = Scale·x + Offset
 	Signal Signal  // in place of Scale and Offset; nil: they hold
 
+	// Truth lets true and false stand in place of the number: they are 1 and 0 in SI, whatever
+	// the unit. Not beside a Signal.
+	Truth bool
+
 	Min, Max float64 // SI, instrument range, both ends allowed; ±Inf: no limit
 	QoS      byte    // 0 or 1; 1 is needed for delivery after a crash
 	// Liveness is set where the messages tell not a value but whether their source is

@@ -90,7 +90,7 @@ func (s *Survey) plugReading(r sparkplug.Reading, arrival int64) {
 	switch {
 	case place == nil:
 		return
-	case r.Wrong != sparkplug.Right:
+	case r.Wrong != sparkplug.Right || r.Truth:
 		place.others++
 		return
 	case r.Mark.Quality() == quality.Bad:

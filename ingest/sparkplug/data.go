@@ -61,6 +61,7 @@ func (s *Space) reading(src *source, id int, d Datatype, birth bool) Reading {
 		r.Stamped, r.Stamp = true, p.Timestamp
 	}
 	r.Value, r.Wrong = m.number(d)
+	r.Truth = m.field == fieldBool
 	if r.Mark.Quality() == quality.Bad {
 		if r.Wrong != Right || m.Null {
 			r.Value = math.NaN()

@@ -64,10 +64,20 @@ func (m *Metric) number(d Datatype) (float64, Wrong) {
 		return ofFloat(math.Float64frombits(m.bits), d)
 	case fieldInt, fieldLong:
 		return m.integer(d)
+	case fieldBool:
+		return m.truth(d)
 	case fieldNone:
 		return math.NaN(), Missing
 	}
 	return math.NaN(), NotNumber
+}
+
+// truth is 1 for true and 0 for false.
+func (m *Metric) truth(d Datatype) (float64, Wrong) {
+	if d != Unknown && d != Boolean {
+		return math.NaN(), Mismatch
+	}
+	return float64(m.bits & 1), Right
 }
 
 func ofFloat(x float64, d Datatype) (float64, Wrong) {

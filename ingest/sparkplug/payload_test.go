@@ -138,7 +138,7 @@ func TestWhatIsNoNumber(t *testing.T) {
 		want Wrong
 	}{
 		"text":                {named("a").bytes(15, []byte("5")), 12, NotNumber},
-		"truth":               {named("a").varint(14, 1), Boolean, NotNumber},
+		"truth as a number":   {named("a").varint(14, 1), Double, Mismatch},
 		"template":            {named("a").bytes(18, named("b").b), 19, NotNumber},
 		"nothing":             {named("a"), Double, Missing},
 		"NaN":                 {named("a").double(math.NaN()), Double, NotFinite},

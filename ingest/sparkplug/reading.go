@@ -11,6 +11,7 @@ type Reading struct {
 	ID    int   // the number that [Options.Want] gave the metric, or the source
 	At    int64 // Unix nanoseconds
 	Value float64
+	Truth bool // the value is true, which is 1, or false, which is 0
 	// Mark says what the source thinks of the value. From a bad one on, the metric has no
 	// value; Value may then be NaN.
 	Mark       quality.Mark
@@ -29,7 +30,7 @@ const (
 	Right      Wrong = iota
 	Transient        // its source asks that it be not stored
 	Missing          // no value, and not null either
-	NotNumber        // text, truth, bytes or a nested value
+	NotNumber        // text, bytes or a nested value
 	NoDatatype       // an integer, and no birth has told of which kind
 	Mismatch         // a value that its datatype cannot have
 	NotFinite        // NaN or infinite
