@@ -66,7 +66,7 @@ func meaning(t *site.Tag) string {
 }
 
 func loadOf(l *site.HeatLoad) loads.Load {
-	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness, Running: loads.Source(l.Running), HasRunning: l.HasRunning, Drivers: driversOf(&l.Design)}
+	load := loads.Load{Name: l.Name, Witness: loads.Source(l.Witness), HasWitness: l.HasWitness, Running: loads.Source(l.Running), HasRunning: l.HasRunning, Bypass: loads.Source(l.Bypass), HasBypass: l.HasBypass, Settles: int64(l.Settles), Drivers: driversOf(&l.Design)}
 	if l.Vessel != nil {
 		load.Vessel = vesselOf(l.Vessel)
 	} else {
@@ -125,8 +125,14 @@ func signalsOf(s *site.Site) []ingest.Tag {
 		tags = append(tags, tag)
 	}
 	for i := range s.Loads {
-		if l := &s.Loads[i]; l.HasRunning {
-			tags[l.Running.Tag].Truth = tags[l.Running.Tag].Signal == nil
+		l := &s.Loads[i]
+		for _, state := range []struct {
+			site.Source
+			has bool
+		}{{l.Running, l.HasRunning}, {l.Bypass, l.HasBypass}} {
+			if state.has {
+				tags[state.Tag].Truth = tags[state.Tag].Signal == nil
+			}
 		}
 	}
 	return tags

@@ -160,7 +160,8 @@ func TestPlantOfTests(t *testing.T) {
 	if !supply.HasBeside || cfg.Tags[supply.Beside].Name != "network/supply temperature B" {
 		t.Errorf("beside %q stands tag %d", supply.Name, supply.Beside)
 	}
-	if l := cfg.Loads[0]; !l.HasRunning || cfg.Tags[l.Running.Tag].Name != "network/pump" || l.Stream.BothWays {
+	if l := cfg.Loads[0]; !l.HasRunning || cfg.Tags[l.Running.Tag].Name != "network/pump" || l.Stream.BothWays ||
+		!l.HasBypass || cfg.Tags[l.Bypass.Tag].Name != "network/bypass" || l.Settles != 15*minute {
 		t.Errorf("load %+v", l)
 	}
 	if l := cfg.Loads[3]; !l.Stream.BothWays || l.HasRunning {
@@ -173,8 +174,8 @@ func TestPlantOfTests(t *testing.T) {
 	}
 }
 
-// True and false are for the tag of a pump alone: of a temperature they are a mistake.
-func TestPumpsMayBeTrueOrFalse(t *testing.T) {
+// True and false are for the tags of pumps and bypasses alone: of a temperature they are a mistake.
+func TestStatesMayBeTrueOrFalse(t *testing.T) {
 	text, err := configs.Files.ReadFile("tarnholt-heat-works.yaml")
 	if err != nil {
 		t.Fatal(err)
@@ -188,9 +189,12 @@ func TestPumpsMayBeTrueOrFalse(t *testing.T) {
 		if l := &s.Loads[i]; l.HasRunning {
 			pumps[s.Tags[l.Running.Tag].Name] = true
 		}
+		if l := &s.Loads[i]; l.HasBypass {
+			pumps[s.Tags[l.Bypass.Tag].Name] = true
+		}
 	}
-	if len(pumps) == 0 {
-		t.Fatal("no load of the example names its pump")
+	if len(pumps) != 2 {
+		t.Fatalf("the example has a pump and a bypass; found %v", pumps)
 	}
 	for _, tag := range signalsOf(s) {
 		if tag.Truth != pumps[tag.Name] {

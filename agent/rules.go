@@ -47,10 +47,14 @@ func rulesOfLoad(cfg *loads.Config, load int) [32]byte {
 	fmt.Fprintf(h, "%+v\n", vessel)
 	l.Stream.Fluid = nil
 	fmt.Fprintf(h, "%+v\n", bookedBy(l))
+	if l.HasBypass {
+		fmt.Fprintln(h, "bypass", l.Bypass, l.Settles)
+	}
 	return [32]byte(h.Sum(nil))
 }
 
-// booked are the fields of a load that its heat is booked by: all but its drivers.
+// booked are the fields of a load that its heat is booked by: all but its drivers, and its bypass
+// where it has one.
 type booked struct {
 	Name       string
 	Stream     loads.Stream
@@ -72,6 +76,9 @@ func sourcesOf(l *loads.Load) (all []*loads.Source) {
 	}
 	if l.HasRunning {
 		all = append(all, &l.Running)
+	}
+	if l.HasBypass {
+		all = append(all, &l.Bypass)
 	}
 	if v := l.Vessel; v != nil {
 		return append(all, &v.Temperature, &v.Pressure, &v.Content)

@@ -106,6 +106,7 @@ func TestRulesOfLoad(t *testing.T) {
 			c.Tags = append(c.Tags, loads.Tag{Name: "TI-B", Beside: 2, HasBeside: true})
 		},
 		"a pump":           func(c *loads.Config) { c.Loads[0].HasRunning = true },
+		"a bypass":         func(c *loads.Config) { c.Loads[0].HasBypass = true },
 		"a witness":        func(c *loads.Config) { c.Loads[0].HasWitness = true },
 		"another tag":      func(c *loads.Config) { c.Loads[0].Stream.Inlet.Tag = 3 },
 		"the kind of load": func(c *loads.Config) { c.Loads[0].Vessel = c.Loads[1].Vessel },

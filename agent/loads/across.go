@@ -77,13 +77,55 @@ func (e *Engine) pumped(load int, f *Figure, s *steps) {
 	}
 }
 
-// order marks the measured figure of a stream that flows with its warmer end on the wrong
-// side, by more than twice
+// BypassOpen is the least part of its way at which a bypass takes all of a flow: common practice, no
+// source.
+const BypassOpen = 0.95
+
+// opened is since when a bypass has been open, with its reading s next to what t holds; 0 where
+// it is not, or what it reads is not to be used. It begins anew after a time without a reading.
+func (t *tagState) opened(s *sample, maxAge int64) int64 {
+	switch h := &t.Held; {
+	case s.bad() || s.Value < BypassOpen:
+		return 0
+	case t.Open == 0 || t.Lapse > h.At || maxAge > 0 && s.At-h.At >= maxAge:
+		return s.At
+	}
+	return t.Open
+}
+
+// alike marks the measured figure of a stream that flows past its load with its ends apart, by
+// more than twice the standard uncertainty of their difference, where there is nothing to make them so.
+func (e *Engine) alike(load int, f *Figure, s *steps) {
+	l, q := &e.cfg.Loads[load], &e.equations[load]
+	if !l.HasBypass || !f.Measured() || q.Inlet.Tag < 0 || q.Outlet.Tag < 0 || !e.standsAt(l.Bypass.Tag, f) {
+		return
+	}
+	since := e.tags[l.Bypass.Tag].Open
+	if since == 0 {
+		return
+	}
+	if settled := since + l.Settles; f.At < settled {
+		f.Until = min(f.Until, settled)
+		return
+	}
+	if u := q.apart(s); u > 0 && math.Abs(s.x.Outlet-s.x.Inlet) > beyond*u {
+		f.mark(quality.NotZero, e.nameOf(q.Outlet))
+	}
+}
+
+// apart is the standard uncertainty of the difference between the ends:
 //
 //	u = √(uI² + uO² − 2·r·uI·uO)
 //
-// where r is the correlation of a matched pair's accuracies. Where one of the temperatures is
-// a constant, or no uncertainty is stated, nothing is expected.
+// where r is the correlation of a matched pair's accuracies.
+func (q *equation) apart(s *steps) float64 {
+	in, out := &s.d[PartInlet], &s.d[PartOutlet]
+	return math.Sqrt(in.variance() + out.variance() - 2*q.Pair*in.accuracy*out.accuracy)
+}
+
+// order marks the measured figure of a stream that flows with its warmer end on the wrong
+// side, by more than twice the standard uncertainty of their difference. Where one of the
+// temperatures is a constant, or no uncertainty is stated, nothing is expected.
 func (e *Engine) order(load int, f *Figure, s *steps) {
 	q := &e.equations[load]
 	if !f.Measured() || q.BothWays || q.Inlet.Tag < 0 || q.Outlet.Tag < 0 {
@@ -93,9 +135,7 @@ func (e *Engine) order(load int, f *Figure, s *steps) {
 	if !q.Gives {
 		wrong = -wrong
 	}
-	in, out := &s.d[PartInlet], &s.d[PartOutlet]
-	u := math.Sqrt(in.variance() + out.variance() - 2*q.Pair*in.accuracy*out.accuracy)
-	if u > 0 && wrong > beyond*u {
+	if u := q.apart(s); u > 0 && wrong > beyond*u {
 		f.mark(quality.WrongOrder, e.nameOf(q.Outlet))
 	}
 }

@@ -170,6 +170,7 @@ func TestCheckOfTestsAcrossTags(t *testing.T) {
 		"sensor beside it has index 9": func(c *Config) { c.Tags[inlet].Beside, c.Tags[inlet].HasBeside = 9, true },
 		"sensor beside it has index 1": func(c *Config) { c.Tags[inlet].Beside, c.Tags[inlet].HasBeside = 1, true },
 		"running: ":                    func(c *Config) { c.Loads[0].Running, c.Loads[0].HasRunning = Constant(1), true },
+		"bypass: ":                     func(c *Config) { c.Loads[0].Bypass, c.Loads[0].HasBypass = Constant(1), true },
 	} {
 		cfg := plant(liquid)
 		change(&cfg)
@@ -220,6 +221,7 @@ func TestScreensSameBits(t *testing.T) {
 		cfg.Tags[inlet].HasBeside = seed%2 == 0
 		cfg.Tags = append(cfg.Tags, Tag{Name: "P", MaxAge: 30 * second})
 		cfg.Loads[0].Running, cfg.Loads[0].HasRunning = FromTag(len(cfg.Tags)-1), true
+		cfg.Loads[0].Bypass, cfg.Loads[0].HasBypass, cfg.Loads[0].Settles = FromTag(len(cfg.Tags)-1), true, 15*second
 		readings := oddCourse(r)
 		for i := range 60 {
 			readings = append(readings, Reading{Tag: len(cfg.Tags) - 1, At: epoch + int64(i)*10*second, Value: float64(r.IntN(3))})
@@ -269,5 +271,51 @@ func TestMarkOfAMinute(t *testing.T) {
 	}
 	if marked == 0 || marked > 2 || len(minutes) < 4 {
 		t.Errorf("%d of %d minutes are marked, want the one or two that hold the 10 s", marked, len(minutes))
+	}
+}
+
+// While nothing heats or cools the stream its ends are alike, once they have had the time for it.
+func TestBypass(t *testing.T) {
+	const valve = 3
+	open := func(at, value float64) []Reading { return marked(valve, at, value, quality.None) }
+	for _, tt := range []struct {
+		name   string
+		apart  float64 // K
+		valve  []Reading
+		pair   float64
+		want   quality.Mark
+		at     float64 // s, when it is looked at
+		settle int64
+	}{
+		{"open for long", 1.2, open(0, 1), 0, quality.NotZero, 8, 5},
+		{"open from 95 % on", 1.2, open(0, 0.95), 0, quality.NotZero, 8, 5},
+		{"not quite open", 1.2, open(0, 0.94), 0, quality.None, 8, 5},
+		{"shut", 1.2, open(0, 0), 0, quality.None, 8, 5},
+		{"not settled", 1.2, open(0, 1), 0, quality.None, 5, 5},
+		{"settled just now", 1.2, open(0, 1), 0, quality.NotZero, 6, 5},
+		{"within 2u", 1.1, open(0, 1), 0, quality.None, 8, 5}, // 2·0.4·√2 = 1.13
+		{"beyond, of a pair", 1.1, open(0, 1), 0.5, quality.NotZero, 8, 5},
+		{"told again", 1.2, append(open(0, 1), open(4, 1)...), 0, quality.NotZero, 8, 5},
+		{"shut meanwhile", 1.2, append(append(open(0, 1), open(2, 0)...), open(4, 1)...), 0, quality.None, 8, 5},
+		{"and open for long again", 1.2, append(append(open(0, 1), open(2, 0)...), open(4, 1)...), 0, quality.NotZero, 10, 5},
+		{"bad meanwhile", 1.2, append(append(open(0, 1), marked(valve, 2, 1, quality.Failed)...), open(4, 1)...), 0, quality.None, 8, 5},
+		{"not told", 1.2, nil, 0, quality.None, 8, 5},
+		{"told too long ago", 1.2, open(0, 1), 0, quality.None, 11, 5},
+	} {
+		cfg := plant(liquid)
+		for _, end := range []int{inlet, outlet} {
+			cfg.Tags[end].MaxAge, cfg.Tags[end].Accuracy.Abs = 60*second, 0.4*math.Sqrt(3)
+		}
+		cfg.Tags[flow].MaxAge = 60 * second
+		cfg.Tags = append(cfg.Tags, Tag{Name: "V", MaxAge: 10 * second})
+		l := &cfg.Loads[0]
+		l.Bypass, l.HasBypass, l.Settles, l.Stream.Pair = FromTag(valve), true, tt.settle*second, tt.pair
+		e := engine(t, cfg)
+		e.Advance(Beat{append(at(0, 2, 350, 350-tt.apart), tt.valve...), through(tt.at)}, nil)
+		by := ""
+		if tt.want != quality.None {
+			by = "TO"
+		}
+		checkMark(t, tt.name, e, tt.want, by)
 	}
 }

@@ -60,6 +60,9 @@ func (l *Load) checkCounters(tags []Tag) error {
 	if l.HasRunning && (l.Running.Tag < 0 || l.Vessel != nil || l.counter(tags) >= 0) {
 		return errors.New("running: the tag of a pump is wanted, and a stream whose flow is a rate")
 	}
+	if l.HasBypass && (l.Bypass.Tag < 0 || l.Vessel != nil || l.Settles < 0) {
+		return errors.New("bypass: a tag that tells whether it is open is wanted, a stream, and no negative time to settle")
+	}
 	if c := &l.Stream.Corrections; l.counter(tags) >= 0 && (c.HasPump || c.Hold > 0 || c.Stored > 0) {
 		return errors.New("corrections of a stream whose flow is counted: a flow at every instant is wanted for them")
 	}

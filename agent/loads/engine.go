@@ -26,6 +26,7 @@ type Engine struct {
 	tally     []Tally
 	doubted   [][]Doubted // of each tag, by mark; nil where none has any
 	users     [][]int     // loads that read each tag
+	bypasses  []bool      // tags that are bypasses of loads
 	onChange  []int       // tags that report by exception
 	follows   [][]follow  // trends that each tag's readings go into
 	holds     []int       // loads with a hold
@@ -55,13 +56,14 @@ func New(cfg Config) (*Engine, error) {
 		return nil, err
 	}
 	e := &Engine{
-		cfg:     cfg,
-		tags:    make([]tagState, len(cfg.Tags)),
-		loads:   make([]loadState, len(cfg.Loads)),
-		tally:   make([]Tally, len(cfg.Tags)),
-		users:   make([][]int, len(cfg.Tags)),
-		follows: make([][]follow, len(cfg.Tags)),
-		renewed: make([]bool, len(cfg.Tags)),
+		cfg:      cfg,
+		tags:     make([]tagState, len(cfg.Tags)),
+		loads:    make([]loadState, len(cfg.Loads)),
+		tally:    make([]Tally, len(cfg.Tags)),
+		users:    make([][]int, len(cfg.Tags)),
+		bypasses: make([]bool, len(cfg.Tags)),
+		follows:  make([][]follow, len(cfg.Tags)),
+		renewed:  make([]bool, len(cfg.Tags)),
 	}
 	for i := range cfg.Tags {
 		if cfg.Tags[i].OnChange {
@@ -104,6 +106,10 @@ func (e *Engine) enlist(load int) {
 	}
 	if l := &e.cfg.Loads[load]; l.HasRunning {
 		e.use(l.Running.Tag, load)
+	}
+	if l := &e.cfg.Loads[load]; l.HasBypass {
+		e.use(l.Bypass.Tag, load)
+		e.bypasses[l.Bypass.Tag] = true
 	}
 }
 

@@ -64,6 +64,7 @@ func (e *Engine) stream(load int, g int64, f *Figure, s *steps) {
 	q.figure(f, s)
 	q.storedSpread(f, s)
 	e.order(load, f, s)
+	e.alike(load, f, s)
 }
 
 // idle reports whether nothing is taken to flow.

@@ -302,6 +302,13 @@ type Load struct {
 	// [quality.NotZero].
 	Running    Source
 	HasRunning bool
+	// Bypass is the tag of what leads the flow of the stream past its load, or shuts off what
+	// heats or cools it, where HasBypass: open from [BypassOpen] on. Once it has been so for
+	// Settles ns, ends that are more than two standard uncertainties apart are
+	// [quality.NotZero].
+	Bypass    Source
+	HasBypass bool
+	Settles   int64
 	// Drivers are the means that a verdict on the load wants to know, at most [MaxDrivers]:
 	// the outdoor temperature, a rate of production. They take no part in any figure, and one
 	// that is missing or bad is NaN and makes no load blind.

@@ -43,6 +43,7 @@ type tagState struct {
 	// Lapse is the newest grid point at which an on-change tag had no sign of life: a
 	// reading from before it does not hold. 0 for none.
 	Lapse    int64
+	Open     int64         // of a bypass: since when it has been open, 0 where it is not
 	Count    count         // of a counter
 	Screen   *screen.State // nil where nothing is tested
 	Meaning  string        // of the tag when it was saved; empty in states from before it was told
@@ -133,6 +134,9 @@ func (e *Engine) hold(tag int, g int64) bool {
 			s.Mark = quality.Worse(s.Mark, t.Held.Mark)
 		}
 		h := &t.Held
+		if e.bypasses[tag] {
+			t.Open = t.opened(s, cfg.MaxAge)
+		}
 		h.At, h.Value, h.Has, h.Mark, h.Aside = s.At, s.Value, true, s.Mark, false
 	}
 	t.Pending = t.Pending[:copy(t.Pending, t.Pending[n:])]

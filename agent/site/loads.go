@@ -27,7 +27,7 @@ func (r *reader) readLoads(o object) {
 
 func (r *reader) load(e entry) HeatLoad {
 	o := e.object("loads.*")
-	l := HeatLoad{Name: e.name, Witness: nowhere, Running: nowhere, Design: Design{Lasting: 10 * time.Minute}}
+	l := HeatLoad{Name: e.name, Witness: nowhere, Running: nowhere, Bypass: nowhere, Design: Design{Lasting: 10 * time.Minute}}
 	var design object
 	if v, ok := o.get("design"); ok {
 		design = v.object("loads.*.design")
@@ -56,6 +56,7 @@ func (r *reader) load(e entry) HeatLoad {
 		o.need("stream", "the fluid with its flow, temperatures and pressure; or vessel, a closed content", "vessel")
 	}
 	r.running(o, &l)
+	r.bypass(o, &l)
 	return l
 }
 

@@ -178,3 +178,31 @@ func (r *reader) running(o object, l *HeatLoad) {
 		l.HasRunning = true
 	}
 }
+
+// bypass reads what leads the flow of a load past it.
+func (r *reader) bypass(o object, l *HeatLoad) {
+	v, ok := o.get("bypass")
+	if !ok {
+		return
+	}
+	of := v.object("loads.*.bypass")
+	l.Settles = 10 * time.Minute
+	of.setDuration("settles", &l.Settles, time.Second, day, "1 s to 1 d")
+	open, ok := of.need("open", "the tag that tells how far it is open, or whether")
+	if !ok {
+		return
+	}
+	before := len(open.faults)
+	l.Bypass, _ = r.sourceAt(open, place{of: []unit.Dimension{unit.Ratio}})
+	switch {
+	case len(open.faults) > before:
+	case l.Bypass.Constant():
+		open.fault("is a constant; want the tag of the bypass: how far it is open in %%, or true where it is")
+	case l.Vessel != nil:
+		v.fault("is not of a vessel, past which nothing flows")
+	case l.Stream != nil && (l.Stream.Inlet.Constant() || l.Stream.Outlet.Constant()):
+		v.fault("tells that inlet and outlet are alike, and one of those of the stream is a constant")
+	default:
+		l.HasBypass = true
+	}
+}

@@ -163,6 +163,9 @@ type HeatLoad struct {
 	HasWitness bool
 	Running    Source // the tag of the pump; only with HasRunning
 	HasRunning bool
+	Bypass     Source // the tag of a bypass; only with HasBypass
+	HasBypass  bool
+	Settles    time.Duration // from when the bypass is open until the temperatures are alike
 	Design     Design
 }
 
@@ -174,7 +177,7 @@ func (l *HeatLoad) Fluid() (string, thermo.Fluid) {
 	return l.Stream.FluidName, l.Stream.Fluid
 }
 
-// Sources are all tags and constants that the load reads, its witness, its pump and what its expected duty
+// Sources are all tags and constants that the load reads, its witness, its pump, its bypass and what its expected duty
 // goes by too.
 func (l *HeatLoad) Sources() []Source {
 	var all []Source
@@ -189,6 +192,9 @@ func (l *HeatLoad) Sources() []Source {
 	}
 	if l.HasRunning {
 		all = append(all, l.Running)
+	}
+	if l.HasBypass {
+		all = append(all, l.Bypass)
 	}
 	for _, tag := range l.Design.Drivers() {
 		all = append(all, Source{Tag: tag})

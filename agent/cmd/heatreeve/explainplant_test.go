@@ -156,6 +156,7 @@ func (p *played) values(t *testing.T) []func(s int) float64 {
 		put(s.Humidity, constant(0.55), 0.005)
 		put(s.Coil, constant(280.15), 0.1)
 		put(s.Pump, constant(2200), 5)
+		put(l.Bypass, constant(0), 0)
 		drivers(&d, put)
 		if s.Flow.Tag >= 0 {
 			tag := &p.site.Tags[s.Flow.Tag]
