@@ -92,12 +92,15 @@ func TestWarningThroughAKill(t *testing.T) {
 	if d := retained(t, c, "bench/heat/warnings/circuit/short"); d.Active || d.End == nil || d.State != warn.Normal {
 		t.Errorf("retained at the end: %+v", d)
 	}
-	out, status := a.command(t, "events", "--subject", "circuit", "--format", "csv")
-	for _, want := range []string{",warning,circuit,\"short, ended", ",acknowledged,circuit,", ",shelved,circuit,"} {
-		if status != exitGood || strings.Count(out, want) != 1 {
-			t.Errorf("status %d: %s, want %q once", status, out, want)
+	eventually(t, "the end is on disk", func() error { // which comes after it was told
+		out, status := a.command(t, "events", "--subject", "circuit", "--format", "csv")
+		for _, want := range []string{",warning,circuit,\"short, ended", ",acknowledged,circuit,", ",shelved,circuit,"} {
+			if status != exitGood || strings.Count(out, want) != 1 {
+				return fmt.Errorf("status %d: %s, want %q once", status, out, want)
+			}
 		}
-	}
+		return nil
+	})
 	a.process.end(t, syscall.SIGTERM)
 	if out, status := a.command(t, "warnings"); status != exitGood || !strings.Contains(out, "shelf: over of circuit") {
 		t.Errorf("after the end: status %d: %s", status, out)
