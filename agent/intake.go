@@ -62,7 +62,7 @@ func (f *intake) look(log *slog.Logger) bool {
 	f.session.TellAt(f.window.limit)
 	if f.window.proven && !f.told {
 		f.told = true
-		log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", f.label("messages", f.window.acked)...)
+		log.Info("the broker seems to wait for acknowledgements; the history is written more often than timing.commit while it does. To spare the disk, raise the broker's limit of messages in flight", f.label("messages", f.window.limit)...)
 	}
 	return commit
 }

@@ -46,7 +46,7 @@ const (
 // minute it is put to the proof by a silence.
 type window struct {
 	eager   bool // the broker waits for us, or may
-	proven  bool // it was seen to
+	proven  bool // it was seen to: a limit stood its proof
 	misses  int
 	early   bool // the last commit was for the broker's sake
 	limit   int  // messages at which the broker stops; 0: not known
@@ -115,7 +115,7 @@ func (w *window) reached(waiting int) bool {
 	}
 	w.calm = 0
 	if w.proof == 0 && w.early && w.looks < answerLooks { // the silence at the limit is answered in full
-		w.early, w.proof, w.hits = false, proofLooks, 0
+		w.early, w.proven, w.proof, w.hits = false, true, proofLooks, 0
 	}
 	if w.proof > 0 {
 		w.hits++
@@ -145,9 +145,11 @@ func (w *window) judge(waiting int) {
 		w.proof, w.hits = proofLooks, 0
 		if waiting < proofAnswer {
 			w.eager, w.limit = false, 0
+		} else {
+			w.proven = true
 		}
 	case answered:
-		w.eager, w.proven, w.misses = true, true, 0
+		w.eager, w.misses = true, 0
 		if w.early {
 			w.limit, w.proof, w.hits, w.calm = w.acked, proofLooks, 0, 0
 		}

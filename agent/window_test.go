@@ -157,3 +157,51 @@ func TestLimitSleepsInAQuietPlant(t *testing.T) {
 		t.Errorf("the plant is busy again: the broker keeps up to %d messages, limit %d; want at most 800, and 20", most, w.limit)
 	}
 }
+
+// bursting is a plant that sends n messages at once every period looks.
+func bursting(n, period, phase int) func(int) int {
+	return func(i int) int {
+		if i%period == phase {
+			return n
+		}
+		return 0
+	}
+}
+
+// Bursts that follow a commit closely look like an answer; a broker with room for
+// them is not said to wait, whatever their size and moment.
+func TestBurstsAreNoSign(t *testing.T) {
+	const limit, interval = 1000, 100
+	for _, n := range []int{8, 20, 40, 90, 300, 499} {
+		for _, period := range []int{5, 7, 10, 13, 20, 50, 100} {
+			if n*(interval/period+1) >= limit {
+				continue // so much does fill the window
+			}
+			for phase := range period {
+				var w window
+				w.connected()
+				play(&w, limit, interval, 6000, bursting(n, period, phase))
+				if w.proven {
+					t.Errorf("%d messages each %d looks from look %d: the broker is said to wait", n, period, phase)
+				}
+			}
+		}
+	}
+}
+
+// A broker that waits several times between two commits is told of, be the plant slow
+// or fast.
+func TestSmallWindowIsTold(t *testing.T) {
+	for _, limit := range []int{10, 20, 50} {
+		for _, perLook := range []int{1, 2, 5, 20, 100} {
+			if 100*perLook < 4*limit {
+				continue
+			}
+			var w window
+			w.connected()
+			if play(&w, limit, 100, 6000, steadily(perLook)); !w.proven {
+				t.Errorf("%d messages a second through a window of %d: nothing is told", 10*perLook, limit)
+			}
+		}
+	}
+}
