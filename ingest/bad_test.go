@@ -178,6 +178,7 @@ var badKinds = []badKind{
 	{"status code of a broken sensor", saying(OPCUA), 0, quality.Failed, withQuality("2156658688")}, // 0x808C0000
 	{"status code of a lost link", saying(OPCUA), 0, quality.Offline, withQuality(`"0x80310000"`)},
 	{"status code uncertain, with limit bits", saying(OPCUA), 0, quality.LastUsable, withQuality("1083180288")}, // 0x40900500
+	{"status code good, at its high limit", saying(OPCUA), 0, quality.Limited, withQuality("1536")},             // 0x0600
 	{"status code of severity 3", saying(OPCUA), UnknownQuality, 0, withQuality("3221225472")},
 	{"status code beyond 32 bits", saying(OPCUA), UnknownQuality, 0, withQuality("4294967296")},
 	{"negative status code", saying(OPCUA), UnknownQuality, 0, withQuality("-2147483648")},

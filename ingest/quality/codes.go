@@ -2,24 +2,40 @@ package quality
 
 // OPCUA is the mark of an OPC UA status code. Its two highest bits are the severity: 00
 // good, 01 uncertain, 10 bad, and 11 is none, for which ok is false (IEC 62541-4, section
-// 7.39). The sub-code of bits 29 to 16 is the reason where it is known here; the low 16
-// bits, which tell of limits and the like, change nothing.
+// 7.39). The sub-code of bits 29 to 16 is the reason where it is known here.
 //
-// The numbers are those of IEC 62541-8, section 6.3; 0x408F to 0x4095 but 0x4090 and
-// 0x4091 are from memory.
+// Three kinds of value are good by that standard and [Uncertain] here, since a heat load
+// that is worked from them is not measured: one at a limit (bits 9 and 8, where bits 11
+// and 10 say that they count) is [Limited], for the true one may lie beyond; a constant
+// and one overridden by hand are each a [Substitute]. The other low bits change nothing.
+//
+// The numbers are those of IEC 62541-8, section 6.3; the low bits, 0x0096 and 0x408F to
+// 0x4095 but 0x4090 and 0x4091 are from memory.
 func OPCUA(status uint32) (m Mark, ok bool) {
 	if m, known := statusCodes[status>>16]; known {
 		return m, true
 	}
 	switch status >> 30 {
 	case 0:
-		return None, true
+		return limits[limitOf(status)], true
 	case 1:
-		return Doubted, true
+		return Worse(limits[limitOf(status)], Doubted), true
 	case 2:
 		return Rejected, true
 	}
 	return None, false
+}
+
+// limits are the marks of the limit bits: none, low, high, constant.
+var limits = [4]Mark{None, Limited, Limited, Substitute}
+
+// limitOf is what the limit bits of a status code say; they count where the info type,
+// bits 11 and 10, is 01.
+func limitOf(status uint32) uint32 {
+	if status>>10&3 != 1 {
+		return 0
+	}
+	return status >> 8 & 3
 }
 
 // OPCUAName is the mark of an OPC UA status code by its symbolic name, such as
@@ -44,6 +60,7 @@ var severities = []struct {
 
 // statusCodes are the codes whose reason has a mark of its own, by their high half.
 var statusCodes = map[uint32]Mark{
+	0x0096: Substitute,
 	0x408F: LastUsable, 0x4090: LastUsable, 0x4091: Substitute, 0x4092: Substitute,
 	0x4093: Inaccurate, 0x4094: OffSpec,
 	0x8005: Offline, 0x8031: Offline, 0x808A: Offline,
@@ -52,6 +69,7 @@ var statusCodes = map[uint32]Mark{
 
 // statusNames are the same by their names.
 var statusNames = map[string]Mark{
+	"GoodLocalOverride":                  Substitute,
 	"UncertainNoCommunicationLastUsable": LastUsable, "UncertainLastUsableValue": LastUsable,
 	"UncertainSubstituteValue": Substitute, "UncertainInitialValue": Substitute,
 	"UncertainSensorNotAccurate": Inaccurate, "UncertainEngineeringUnitsExceeded": OffSpec,

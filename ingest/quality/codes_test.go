@@ -17,10 +17,9 @@ func TestOPCUA(t *testing.T) {
 		{0x808B0000, "BadDeviceFailure", Failed}, {0x808C0000, "BadSensorFailure", Failed}, {0x808D0000, "BadOutOfService", OutOfService},
 		{0x40920000, "UncertainInitialValue", Substitute}, {0x40930000, "UncertainSensorNotAccurate", Inaccurate}, // (memory)
 		{0x40940000, "UncertainEngineeringUnitsExceeded", OffSpec}, {0x40950000, "UncertainSubNormal", Doubted}, // (memory)
-		{0x00960000, "GoodLocalOverride", None},                        // (memory)
 		{0x408F0000, "UncertainNoCommunicationLastUsable", LastUsable}, // (memory)
 	} {
-		for _, flags := range []uint32{0, 0x0400, 0x0480, 0x0700, 0xFFFF} { // limits, overflow, anything
+		for _, flags := range []uint32{0, 0x0400, 0x0480, 0x0300, 0x0B00, 0xFFFF} { // no limit, overflow, limits of another info type
 			if got, ok := OPCUA(tt.code | flags); !ok || got != tt.want {
 				t.Errorf("%#08x: %v, %v; want %v", tt.code|flags, got, ok, tt.want)
 			}
@@ -41,6 +40,33 @@ func TestOPCUA(t *testing.T) {
 		if m, ok := OPCUAName([]byte(name)); ok {
 			t.Errorf("%q is %v; want no status", name, m)
 		}
+	}
+}
+
+// The bits are those of IEC 62541-4 (OPC 10000-4, 7.39), from memory: a limit counts where the
+// info type is 01, and neither worsens nor explains what is bad or uncertain for a reason.
+func TestOPCUALimits(t *testing.T) {
+	for _, tt := range []struct {
+		status uint32
+		want   Mark
+	}{
+		{0x00000400, None}, {0x00000500, Limited}, {0x00000600, Limited}, {0x00000700, Substitute},
+		{0x00000480, None}, {0x00000580, Limited}, {0x00000100, None}, {0x00000900, None}, {0x00000D00, None},
+		{0x40000500, Limited}, {0x40000700, Substitute}, {0x40950600, Limited}, {0x40000100, Doubted},
+		{0x40940600, OffSpec}, {0x40900700, LastUsable}, {0x80000500, Rejected}, {0x808C0600, Failed},
+	} {
+		if got, ok := OPCUA(tt.status); !ok || got != tt.want {
+			t.Errorf("%#08x: %v, %v; want %v", tt.status, got, ok, tt.want)
+		}
+	}
+}
+
+// A value overridden by hand is good to the standard, but it is not measured.
+func TestOPCUAOverride(t *testing.T) {
+	byNumber, _ := OPCUA(0x00960000)
+	byName, _ := OPCUAName([]byte("GoodLocalOverride"))
+	if byNumber != Substitute || byName != Substitute {
+		t.Errorf("a local override is %v by number, %v by name; want %v", byNumber, byName, Substitute)
 	}
 }
 

@@ -54,6 +54,7 @@ const (
 	BelowSpan  Mark = Mark(Uncertain)<<reasonBits | 5 // a current below 4 mA that is no failure: NAMUR NE 43
 	AboveSpan  Mark = Mark(Uncertain)<<reasonBits | 6 // a current above 20 mA that is no failure: NAMUR NE 43
 	Inaccurate Mark = Mark(Uncertain)<<reasonBits | 7 // the sensor says that it is not accurate now
+	Limited    Mark = Mark(Uncertain)<<reasonBits | 8 // held at the lowest or highest value that the source can tell
 
 	// Found by a test on one signal.
 	Implausible Mark = Mark(Uncertain)<<reasonBits | 16 // within the instrument's range, outside the plausible one
@@ -83,7 +84,7 @@ func (m Mark) Quality() Quality { return Quality(m >> reasonBits) }
 var words = map[Mark]string{
 	None: "good", Maintenance: "maintenance-due",
 	Doubted: "doubted-by-source", LastUsable: "last-usable", Substitute: "substitute", OffSpec: "out-of-specification",
-	BelowSpan: "below-span", AboveSpan: "above-span", Inaccurate: "not-accurate",
+	BelowSpan: "below-span", AboveSpan: "above-span", Inaccurate: "not-accurate", Limited: "limited-at-source",
 	Implausible: "implausible", TooFast: "too-fast", Stuck: "stuck", Spike: "spike",
 	Disagrees: "disagrees", NotZero: "not-zero", WrongOrder: "wrong-order",
 	Rejected: "rejected-by-source", Failed: "failure", FunctionCheck: "function-check", NoValue: "no-value",
