@@ -17,6 +17,7 @@ type Figure struct {
 // The figures of a stream and of a vessel, in the order in which a working comes to them.
 var (
 	Inlet       = Figure{"T1", "inlet temperature"}
+	Leaving     = Figure{"T1h", "inlet temperature of what leaves now"} // in the place of Inlet where a stream has a hold
 	Outlet      = Figure{"T2", "outlet temperature"}
 	Content     = Figure{"T", "temperature of the content"}
 	MassFlow    = Figure{"m", "mass flow"}
@@ -28,12 +29,16 @@ var (
 var (
 	Expected             = Figure{"Qd", "expected duty"}
 	ExpectedUncertainty  = Figure{"ud", "standard uncertainty of what is expected, by what lasts"}
-	Deviation            = Figure{"d", "deviation"}
-	DeviationUncertainty = Figure{"un", "standard uncertainty of the deviation"}
+	Deviation            = Figure{"δ", "deviation"}
+	DeviationUncertainty = Figure{"uδ", "standard uncertainty of the deviation"}
 )
 
 // All are those above.
-var All = []Figure{Inlet, Outlet, Content, MassFlow, Duty, Uncertainty, Expected, ExpectedUncertainty, Deviation, DeviationUncertainty}
+var All = []Figure{Inlet, Leaving, Outlet, Content, MassFlow, Duty, Uncertainty, Expected, ExpectedUncertainty, Deviation, DeviationUncertainty}
+
+// By is what stands beside a figure that has come about in one of several ways: its words, and which
+// way that is.
+func (f Figure) By(way string) string { return f.Words + ", " + way }
 
 // Help is what a metric says of a figure: its words, what more there is to say of it, which begins
 // with its own space or comma, and its symbol in a working.

@@ -37,7 +37,7 @@ var (
 	grade       = desc("load_quality", "1 for the quality of the figure, the worst of the readings that it was computed from, 0 for the others; bad while the load is blind.", "load", "quality")
 	latent      = desc("load_latent", "1 while the duty is the sensible part only, because vapour condenses in the load or may; otherwise 0, and absent while the load is blind.", "load")
 	massFlow    = desc("load_mass_flow_kilograms_per_second", figure.MassFlow.Help(" that the duty was computed from"), "load")
-	inlet       = desc("load_inlet_celsius", figure.Inlet.Help(" that the duty was computed from"), "load")
+	inlet       = desc("load_inlet_celsius", figure.Inlet.Help(" that the duty was computed from")+" With a hold it is "+figure.Leaving.Symbol+".", "load")
 	outlet      = desc("load_outlet_celsius", figure.Outlet.Help(" that the duty was computed from"), "load")
 	content     = desc("load_content_celsius", figure.Content.Help(" of a vessel, that the duty was computed from"), "load")
 	counted     = desc("load_witness_counted_joules", "Heat that the load's witness has counted since midnight by the clock of the site, in spans between two of its counts that were measured throughout.", "load")

@@ -57,7 +57,7 @@ func TestFigures(t *testing.T) {
 # TYPE heatreeve_load_duty_watts gauge
 heatreeve_load_duty_watts{load="hot-water"} 500000
 heatreeve_load_duty_watts{load="spare"} 0
-# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain.
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain. With a hold it is T1h.
 # TYPE heatreeve_load_inlet_celsius gauge
 heatreeve_load_inlet_celsius{load="hot-water"} 130
 # HELP heatreeve_load_coverage_ratio Part of the window that was measured, 0 to 1.
@@ -211,7 +211,7 @@ heatreeve_load_content_celsius{load="spare"} 65
 # TYPE heatreeve_load_duty_random_uncertainty_watts gauge
 heatreeve_load_duty_random_uncertainty_watts{load="hot-water"} 2000
 heatreeve_load_duty_random_uncertainty_watts{load="spare"} 800
-# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain.
+# HELP heatreeve_load_inlet_celsius Inlet temperature that the duty was computed from. It is T1 in the working of heatreeve explain. With a hold it is T1h.
 # TYPE heatreeve_load_inlet_celsius gauge
 heatreeve_load_inlet_celsius{load="hot-water"} 130
 # HELP heatreeve_load_mass_flow_kilograms_per_second Mass flow that the duty was computed from. It is m in the working of heatreeve explain.

@@ -33,7 +33,7 @@ func (p *page) clean(x *Exchanger) (term, bool) {
 		least, most = cold, hot
 	}
 	cmin, cmax := min(s.Hot.Capacity(), s.Cold.Capacity()), max(s.Hot.Capacity(), s.Cold.Capacity())
-	ratio := p.worked("C", "ratio of the capacity rates", least.over(most), cmin/cmax, "1", fine, "")
+	ratio := p.worked("Cr", "ratio of the capacity rates", least.over(most), cmin/cmax, "1", fine, "")
 	UA := p.conductance(x)
 	ntu := m.Clean(s) / cmin
 	n := p.worked("NTU", "transfer units", UA.over(least), ntu, "1", place(ntu, fine), "")
@@ -44,7 +44,7 @@ func (p *page) clean(x *Exchanger) (term, bool) {
 		duty += x.Loss
 		q = q.plus(p.given("L", "loss to the surroundings", x.Loss/1e3, "kW", place(x.Loss/1e3, 10), "site file"))
 	}
-	return p.worked(figure.Expected.Symbol, "duty of the clean exchanger, "+x.Name, q, duty/1e3, "kW", place(duty/1e3, fine), ""), true
+	return p.worked(figure.Expected.Symbol, figure.Expected.By("that of the clean exchanger, ")+x.Name, q, duty/1e3, "kW", place(duty/1e3, fine), ""), true
 }
 
 // capacity writes the capacity rate of a side, kW/K, and its inlet.
@@ -99,5 +99,5 @@ func (p *page) effectiveness(m *exchanger.Model, n, c term, ntu, ratio float64, 
 	case m.Kind == exchanger.Parallel:
 		return show(one.minus(negative(n).times(one.plus(c)).exp()).over(one.plus(c)))
 	}
-	return p.given("ε", fmt.Sprintf("%s, of NTU and C", words), eps, "1", place(eps, fine), byKays)
+	return p.given("ε", fmt.Sprintf("%s, of NTU and Cr", words), eps, "1", place(eps, fine), byKays)
 }

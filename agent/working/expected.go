@@ -30,7 +30,7 @@ func (p *page) expected() {
 			duty = p.plainly()
 		}
 	case expect.Fixed:
-		duty = p.given(figure.Expected.Symbol, "design duty", x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "site file")
+		duty = p.given(figure.Expected.Symbol, figure.Expected.By("by design"), x.Duty/1e3, "kW", place(x.Duty/1e3, 10), "site file")
 	case expect.Table:
 		duty, relative = p.table(&of), of.Uncertainty
 	case expect.Week:
@@ -47,7 +47,7 @@ func (p *page) expected() {
 // plainly writes what is expected without how.
 func (p *page) plainly() term {
 	q := p.Grounds.Today.Duty / 1e3
-	return p.given(figure.Expected.Symbol, "expected at the conditions of the last minute", q, "kW", place(q, 10), "")
+	return p.given(figure.Expected.Symbol, figure.Expected.By("at the conditions of the last minute"), q, "kW", place(q, 10), "")
 }
 
 // doubt writes how unsure the expectation is.
@@ -97,7 +97,7 @@ func (p *page) table(t *expect.Table) term {
 		parts, at = append(parts, part), append(at, i)
 	}
 	if len(t.Axes) == 1 {
-		return p.between("Qd", "expected duty", p.corner("Qa", t.Duty[at[0]]), p.corner("Qb", t.Duty[at[0]+1]), parts[0], p.Grounds.Today.Duty)
+		return p.between(figure.Expected.Symbol, figure.Expected.Words, p.corner("Qa", t.Duty[at[0]]), p.corner("Qb", t.Duty[at[0]+1]), parts[0], p.Grounds.Today.Duty)
 	}
 	n, v := len(t.Axes[1].At), parts[1]
 	row := func(i int, symbol string) term {
@@ -105,7 +105,7 @@ func (p *page) table(t *expect.Table) term {
 		return p.between(symbol, "between these", p.corner(symbol+"1", a), p.corner(symbol+"2", b), v, a+(b-a)*p.part(t, 1, at[1]))
 	}
 	a, b := row(at[0], "Qa"), row(at[0]+1, "Qb")
-	return p.between("Qd", "expected duty", a, b, parts[0], p.Grounds.Today.Duty)
+	return p.between(figure.Expected.Symbol, figure.Expected.Words, a, b, parts[0], p.Grounds.Today.Duty)
 }
 
 func (p *page) corner(symbol string, w float64) term {
@@ -146,7 +146,7 @@ func hour(h int) string { return fmt.Sprintf("%s from %02d:00 on", weekdays[h/24
 
 func (p *page) week() term {
 	q := p.Grounds.Today.Duty / 1e3
-	return p.given(figure.Expected.Symbol, "duty of the hour of the week, "+hour(p.Grounds.By.Hour), q, "kW", place(q, 10), "site file")
+	return p.given(figure.Expected.Symbol, figure.Expected.By("that of the hour of the week, ")+hour(p.Grounds.By.Hour), q, "kW", place(q, 10), "site file")
 }
 
 // baseline writes the learned regression with its coefficients.

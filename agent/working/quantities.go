@@ -40,7 +40,7 @@ var quantities = map[string]quantity{
 	"outlet":          of(figure.Outlet, "K", 1),
 	"pressure":        {"p1", "pressure at the inlet", "kPa", 1e3},
 	"outlet pressure": {"p2", "pressure at the outlet", "kPa", 1e3},
-	"coil":            {"Tc", "coldest surface of the coil", "K", 1},
+	"coil":            {"Ts", "coldest surface of the coil", "K", 1},
 	"pump":            {"P", "heat of the pump", "kW", 1e3},
 	"temperature":     of(figure.Content, "K", 1),
 }

@@ -45,7 +45,7 @@ func OfRecord(r Record) *Working {
 	if (m.Given-m.Taken)*m.Duty < 0 {
 		net = taken.minus(given)
 	}
-	s.worked(figure.Duty.Symbol, "mean duty, positive in the load's service", net.over(span), m.Duty/1e3, "kW", place(m.Duty/1e3, fine-1), "")
+	s.worked(figure.Duty.Symbol, figure.Duty.By("mean of the minute, positive in the load's service"), net.over(span), m.Duty/1e3, "kW", place(m.Duty/1e3, fine-1), "")
 	s.given("Qmin", "least on the grid", m.DutyMin/1e3, "kW", place(m.DutyMin/1e3, fine-1), "")
 	s.given("Qmax", "greatest on the grid", m.DutyMax/1e3, "kW", place(m.DutyMax/1e3, fine-1), "")
 	s.spread(m, span)
@@ -59,14 +59,15 @@ func (s *sheet) means(m *loads.Minute) {
 	s.begin("Means of the minute")
 	defer s.end()
 	for _, x := range []struct {
-		symbol, words, unit string
-		value               float64
+		figure.Figure
+		unit  string
+		value float64
 	}{
-		{"m", "mass flow", "kg/s", m.MassFlow}, {"T1", "inlet temperature", "K", m.Inlet}, {"T2", "outlet temperature", "K", m.Outlet},
-		{"T", "temperature of the content", "K", m.Content}, {"p1", "pressure at the inlet", "kPa", m.Pressure / 1e3},
+		{figure.MassFlow, "kg/s", m.MassFlow}, {figure.Inlet, "K", m.Inlet}, {figure.Outlet, "K", m.Outlet},
+		{figure.Content, "K", m.Content}, {figure.Figure{Symbol: "p1", Words: "pressure at the inlet"}, "kPa", m.Pressure / 1e3},
 	} {
 		if x.value != 0 {
-			s.given(x.symbol, x.words, x.value, x.unit, place(x.value, fine-1), "record of the minute")
+			s.given(x.Symbol, x.Words, x.value, x.unit, place(x.value, fine-1), "record of the minute")
 		}
 	}
 }
@@ -93,6 +94,6 @@ func (s *sheet) spread(m *loads.Minute, span term) {
 	lasting, random := m.Doubt()
 	u := math.Sqrt(lasting*lasting + random)
 	s.Uncertainty = &u
-	standard := s.worked(figure.Uncertainty.Symbol, "standard uncertainty of the mean duty", sum(squares(all)).root(), u/1e3, "kW", place(u/1e3, coarse), byLaw)
+	standard := s.worked(figure.Uncertainty.Symbol, figure.Uncertainty.By("mean of the minute"), sum(squares(all)).root(), u/1e3, "kW", place(u/1e3, coarse), byLaw)
 	s.worked("U", "expanded, with the coverage factor 2", number(CoverageFactor).times(standard), CoverageFactor*u/1e3, "kW", place(u/1e3, coarse), "JCGM 100:2008, 6.3.3")
 }

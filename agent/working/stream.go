@@ -50,9 +50,9 @@ func (p *page) hold() {
 	if s.Hold == 0 {
 		return
 	}
-	words := fmt.Sprintf("inlet temperature of what leaves now, plug flow through %s L", fixed(s.Hold*1e3, 6))
+	words := figure.Leaving.By(fmt.Sprintf("plug flow through %s L", fixed(s.Hold*1e3, 6)))
 	p.at["reading"] = p.at["inlet"]
-	p.at["inlet"] = p.given("T1h", words, b.State.Inlet, "K", place(b.State.Inlet, fine+2), "from the flow and inlet since then")
+	p.at["inlet"] = p.given(figure.Leaving.Symbol, words, b.State.Inlet, "K", place(b.State.Inlet, fine+2), "from the flow and inlet since then")
 }
 
 // enthalpyPlaces is how many decimals of kJ/kg leave their difference its digits.

@@ -47,8 +47,8 @@ func (p *page) deviation() {
 	}
 	p.worked("a", "allowance", named("allow", g.Target.Allow).times(expected), g.Allowance()/1e3, "kW", place(g.Allowance()/1e3, fine), "")
 	d := p.worked(figure.Deviation.Symbol, figure.Deviation.Words, mean.minus(expected), g.Deviation/1e3, "kW", n, "")
-	p.given("dmin", "the least of a minute", g.Least/1e3, "kW", max(0, n), "")
-	p.given("dmax", "the greatest", g.Most/1e3, "kW", max(0, n), "")
+	p.given("δmin", "the least of a minute", g.Least/1e3, "kW", max(0, n), "")
+	p.given("δmax", "the greatest", g.Most/1e3, "kW", max(0, n), "")
 	p.significance(d)
 }
 
@@ -60,12 +60,12 @@ func (p *page) significance(d term) {
 		return
 	}
 	s, r := g.Systematic/1e3, g.Random/1e3
-	lasting := p.given("sd", "standard uncertainty of the deviation, by what lasts", s, "kW", place(s, coarse+1), byLaw)
-	random := p.given("rn", "and by what averages out", r, "kW", place(r, coarse+1), byLaw)
+	lasting := p.given("sδ", "standard uncertainty of the deviation, by what lasts", s, "kW", place(s, coarse+1), byLaw)
+	random := p.given("rδ", "and by what averages out", r, "kW", place(r, coarse+1), byLaw)
 	u := p.worked(figure.DeviationUncertainty.Symbol, figure.DeviationUncertainty.Words, sum(squares([]term{lasting, random})).root(), x, "kW", place(x, coarse+1), byLaw)
-	p.worked("Un", "expanded, with the coverage factor 2", number(CoverageFactor).times(u), CoverageFactor*x, "kW", place(x, coarse), "JCGM 100:2008, 6.3.3")
+	p.worked("Uδ", "expanded, with the coverage factor 2", number(CoverageFactor).times(u), CoverageFactor*x, "kW", place(x, coarse), "JCGM 100:2008, 6.3.3")
 	z := g.Deviation / g.Uncertainty()
-	p.worked("d/u", "deviation in standard uncertainties", d.over(u), z, "1", place(z, 3), "")
+	p.worked("δ/u", "deviation in standard uncertainties", d.over(u), z, "1", place(z, 3), "")
 }
 
 // steadiness writes which quantity moved the duty most: it is steady where that is let pass,
@@ -80,7 +80,7 @@ func (p *page) steadiness() {
 	if unit := slopeUnits[s.Worst]; unit != "" {
 		p.given("b", "its slope", s.Slope, unit, place(s.Slope, coarse), bySlope)
 	}
-	p.given("t", "that slope in its standard errors", s.T, "1", place(s.T, 3), "")
+	p.given("b/s", "that slope in its standard errors", s.T, "1", place(s.T, 3), "")
 	if s.R > 0 {
 		p.given("R", fmt.Sprintf("its R-statistic, about 1 at rest and above %g where it moves", steady.Rejects), s.R, "1", place(s.R, 3), byRatio)
 	}
@@ -110,17 +110,17 @@ func (p *page) drift() {
 		p.say(fmt.Sprintf("drift: windows are compared once %d more have shown how they scatter", x.Waits))
 		return
 	}
-	d := p.given("dw", "deviation of the last window, as a part", x.Deviation, "1", place(x.Deviation, fine), "windows that do not overlap")
+	d := p.given("δw", "deviation of the last window, as a part", x.Deviation, "1", place(x.Deviation, fine), "windows that do not overlap")
 	dead := p.given("D", "dead band, 2.5 times what of its uncertainty lasts", x.Dead, "1", place(x.Dead, coarse+1), "")
-	scatter := p.given("sw", "standard deviation of windows", x.Scatter, "1", place(x.Scatter, coarse+1), "successive differences, and random parts")
+	scatter := p.given("σw", "standard deviation of windows", x.Scatter, "1", place(x.Scatter, coarse+1), "successive differences, and random parts")
 	if x.X != 0 {
 		beyond := d.minus(dead)
 		if x.X < 0 {
 			beyond = d.plus(dead)
 		}
-		p.worked("x", "beyond the dead band, in standard deviations", beyond.over(scatter), x.X, "1", place(x.X, coarse), "")
+		p.worked("y", "beyond the dead band, in standard deviations", beyond.over(scatter), x.X, "1", place(x.X, coarse), "")
 	}
-	p.given("S+", "sum of x − 0.5 upward", x.High, "1", place(x.High, coarse), cusum)
+	p.given("S+", "sum of y − 0.5 upward", x.High, "1", place(x.High, coarse), cusum)
 	p.given("S-", "and downward", x.Low, "1", place(x.Low, coarse), cusum)
 	p.given("h", "limit of the sums, by the false warnings a year", x.Limit, "1", place(x.Limit, coarse), "")
 	if x.Side != 0 {
