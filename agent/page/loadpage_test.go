@@ -24,6 +24,7 @@ func parsed(t *testing.T, page string) *html.Node {
 	if err != nil {
 		t.Fatal(err)
 	}
+	checkAddresses(t, n)
 	return n
 }
 
