@@ -25,6 +25,7 @@ var arrows = map[string][]string{
 	"store":            {},
 	"ingest":           {"ingest/...", "thermo/unit"},
 	"ingest/...":       {"ingest/quality"},
+	"ingest/authority": {},
 	"configs":          {},
 	"agent/loads":      {"thermo", "ingest/quality", "ingest/screen"},
 	"agent/design":     {"agent/design/...", "thermo"},

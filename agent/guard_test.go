@@ -13,6 +13,7 @@ import (
 
 	"heatreeve/agent/access"
 	"heatreeve/agent/answer"
+	"heatreeve/ingest/authority"
 )
 
 // hashed is a bcrypt hash, the cheapest that there is.
@@ -37,12 +38,12 @@ func webFile(t testing.TB, text string) string {
 // Beyond the loopback nobody is let in who is not asked, unless told so; what is wrong with a
 // web configuration is told by its place.
 func TestWhoMayLook(t *testing.T) {
-	a := newAuthority(t)
-	a.issue(t, "agent")
+	a := authority.New(t, t.TempDir(), ".pem")
+	a.Issue(t, "agent", "127.0.0.1")
 	users := "basic_auth_users: {engineer: '" + hashed(t, "x") + "'}\n"
-	server := "tls_server_config: {cert_file: " + a.path("agent.pem") + ", key_file: " + a.path("agent.key")
-	clients := server + ", client_ca_file: " + a.path("ca.pem") + ", client_auth_type: "
-	if err := os.WriteFile(a.path("empty.pem"), nil, 0o600); err != nil {
+	server := "tls_server_config: {cert_file: " + a.Path("agent.pem") + ", key_file: " + a.Path("agent.key")
+	clients := server + ", client_ca_file: " + a.Path("ca.pem") + ", client_auth_type: "
+	if err := os.WriteFile(a.Path("empty.pem"), nil, 0o600); err != nil {
 		t.Fatal(err)
 	}
 	const nobody = "nobody would be asked who they are; give --web-config FILE"
@@ -75,8 +76,8 @@ func TestWhoMayLook(t *testing.T) {
 		{"127.0.0.1:9617", "basic_auth_user: {}\n", false, "line 1: field basic_auth_user not found"},
 		{"127.0.0.1:9617", "http_server_config: {headers: {Server: x}}\n", false, "line 1: field http_server_config not found"},
 		{"127.0.0.1:9617", "tls_server_config: {cert_file: nowhere.pem, key_file: nowhere.key}\n", false, "nowhere.pem"},
-		{"127.0.0.1:9617", "tls_server_config: {cert_file: " + a.path("agent.pem") + "}\n", false, "tls_server_config: key_file is missing"},
-		{"127.0.0.1:9617", server + ", client_ca_file: " + a.path("empty.pem") + ", client_auth_type: RequireAndVerifyClientCert}\n", false, "client_ca_file holds no certificate"},
+		{"127.0.0.1:9617", "tls_server_config: {cert_file: " + a.Path("agent.pem") + "}\n", false, "tls_server_config: key_file is missing"},
+		{"127.0.0.1:9617", server + ", client_ca_file: " + a.Path("empty.pem") + ", client_auth_type: RequireAndVerifyClientCert}\n", false, "client_ca_file holds no certificate"},
 		{"9617", "", false, `--listen "9617": missing port in address; write host:port`},
 	} {
 		o := Options{Listen: tt.listen, Openly: tt.openly}
@@ -91,7 +92,7 @@ func TestWhoMayLook(t *testing.T) {
 			t.Errorf("%v does not name the file", err)
 		}
 	}
-	if err := CheckLooking(Options{Listen: "127.0.0.1:0", WebConfig: a.path("nowhere.yaml")}); err == nil || !strings.Contains(err.Error(), "nowhere.yaml") {
+	if err := CheckLooking(Options{Listen: "127.0.0.1:0", WebConfig: a.Path("nowhere.yaml")}); err == nil || !strings.Contains(err.Error(), "nowhere.yaml") {
 		t.Errorf("no file: %v", err)
 	}
 }

@@ -14,6 +14,7 @@ import (
 
 	"heatreeve/agent/answer"
 	"heatreeve/agent/demo"
+	"heatreeve/ingest/authority"
 )
 
 // shown is an agent on the demo's plant that is looked at.
@@ -84,10 +85,10 @@ var lookedAt = []string{"/metrics", "/", "/healthz", reportPath + "?from=2020-01
 // With a web configuration all that is shown is behind certificate and password, while the
 // command line needs neither.
 func TestBehindTLSAndAPassword(t *testing.T) {
-	a := newAuthority(t)
-	a.issue(t, "agent")
-	s := show(t, "tls_server_config: {cert_file: "+a.path("agent.pem")+", key_file: "+a.path("agent.key")+"}\nbasic_auth_users: {engineer: '"+hashed(t, "right")+"'}\n")
-	trusts := a.client(t, "")
+	a := authority.New(t, t.TempDir(), ".pem")
+	a.Issue(t, "agent", "127.0.0.1")
+	s := show(t, "tls_server_config: {cert_file: "+a.Path("agent.pem")+", key_file: "+a.Path("agent.key")+"}\nbasic_auth_users: {engineer: '"+hashed(t, "right")+"'}\n")
+	trusts := a.Client(t, "")
 	for _, path := range lookedAt {
 		for password, want := range map[string]int{"": 401, "wrong": 401, "right": 200} {
 			resp, body, err := s.look(t, trusts, path, password)
@@ -103,11 +104,11 @@ func TestBehindTLSAndAPassword(t *testing.T) {
 			checkBounds(t, resp.Header)
 		}
 	}
-	if _, _, err := s.look(t, newAuthority(t).client(t, ""), "/", "right"); err == nil || !strings.Contains(err.Error(), "unknown authority") {
+	if _, _, err := s.look(t, authority.New(t, t.TempDir(), ".pem").Client(t, ""), "/", "right"); err == nil || !strings.Contains(err.Error(), "unknown authority") {
 		t.Errorf("by another authority: %v", err)
 	}
 	before := peer(t, s, trusts)
-	a.issue(t, "agent")
+	a.Issue(t, "agent", "127.0.0.1")
 	if after := peer(t, s, trusts); bytes.Equal(before, after) {
 		t.Error("the certificate that was renewed is not shown")
 	}
@@ -131,17 +132,17 @@ func peer(t *testing.T, s *shown, c *tls.Config) []byte {
 
 // Clients that show a certificate of the authority need no password, and others are not heard.
 func TestBehindCertificatesOfClients(t *testing.T) {
-	a, other := newAuthority(t), newAuthority(t)
-	a.issue(t, "agent")
-	a.issue(t, "prometheus")
-	other.issue(t, "stranger")
-	s := show(t, "tls_server_config: {cert_file: "+a.path("agent.pem")+", key_file: "+a.path("agent.key")+", client_ca_file: "+a.path("ca.pem")+", client_auth_type: RequireAndVerifyClientCert}\n")
-	if resp, _, err := s.look(t, a.client(t, "prometheus"), "/metrics", ""); err != nil || resp.StatusCode != 200 {
+	a, other := authority.New(t, t.TempDir(), ".pem"), authority.New(t, t.TempDir(), ".pem")
+	a.Issue(t, "agent", "127.0.0.1")
+	a.Issue(t, "prometheus")
+	other.Issue(t, "stranger")
+	s := show(t, "tls_server_config: {cert_file: "+a.Path("agent.pem")+", key_file: "+a.Path("agent.key")+", client_ca_file: "+a.Path("ca.pem")+", client_auth_type: RequireAndVerifyClientCert}\n")
+	if resp, _, err := s.look(t, a.Client(t, "prometheus"), "/metrics", ""); err != nil || resp.StatusCode != 200 {
 		t.Errorf("%+v, %v", resp, err)
 	}
-	stranger := a.client(t, "")
-	stranger.Certificates = other.client(t, "stranger").Certificates
-	for what, c := range map[string]*tls.Config{"none": a.client(t, ""), "another's": stranger} {
+	stranger := a.Client(t, "")
+	stranger.Certificates = other.Client(t, "stranger").Certificates
+	for what, c := range map[string]*tls.Config{"none": a.Client(t, ""), "another's": stranger} {
 		if resp, _, err := s.look(t, c, "/metrics", ""); err == nil {
 			t.Errorf("%s: %+v, %v", what, resp, err)
 		}

@@ -4,6 +4,7 @@ package deploy
 
 import (
 	"fmt"
+	"heatreeve/ingest/authority"
 	"os"
 	"os/exec"
 	"path/filepath"
@@ -19,7 +20,7 @@ type broker struct {
 	*process
 	dir           string
 	port, portTLS string
-	authority     authority
+	authority     *authority.Authority
 }
 
 const (
@@ -36,8 +37,8 @@ func startBroker(t *testing.T) *broker {
 			t.Fatal(err)
 		}
 	}
-	b.authority = newAuthority(t, filepath.Join(b.dir, "certs"))
-	b.authority.issue(t, "broker")
+	b.authority = authority.New(t, filepath.Join(b.dir, "certs"), ".crt")
+	b.authority.Issue(t, "broker", "127.0.0.1")
 	b.install(t, "mosquitto.conf", "/etc/mosquitto/", b.dir+"/", "/var/lib/mosquitto/", b.dir+"/lib/",
 		"listener 1883 ", "listener "+b.port+" ", "log_dest syslog", "log_dest stderr"+asUser())
 	b.install(t, "conf.d/heatreeve-tls.conf", "/etc/mosquitto/", b.dir+"/", "listener 8883", "listener "+b.portTLS+" 127.0.0.1")
@@ -138,7 +139,7 @@ func TestBrokerRefusesStrangers(t *testing.T) {
 
 func TestBrokerAsksForCertificates(t *testing.T) {
 	b := startBroker(t)
-	b.authority.issue(t, "client")
+	b.authority.Issue(t, "client")
 	certs := filepath.Join(b.dir, "certs")
 	with := func(args ...string) []string {
 		all := b.plant("--cafile", filepath.Join(certs, "ca.crt"), "-t", "creamery/hw/TT-201", "-m", "1")
@@ -153,9 +154,9 @@ func TestBrokerAsksForCertificates(t *testing.T) {
 	if out, err := output(t, "mosquitto_pub", with()...); err == nil {
 		t.Errorf("a client without a certificate is let in: %q", out)
 	}
-	other := newAuthority(t, t.TempDir())
-	other.issue(t, "client")
-	if out, err := output(t, "mosquitto_pub", with("--cert", filepath.Join(other.dir, "client.crt"), "--key", filepath.Join(other.dir, "client.key"))...); err == nil {
+	other := authority.New(t, t.TempDir(), ".crt")
+	other.Issue(t, "client")
+	if out, err := output(t, "mosquitto_pub", with("--cert", other.Path("client.crt"), "--key", other.Path("client.key"))...); err == nil {
 		t.Errorf("a certificate of another authority is let in: %q", out)
 	}
 }

@@ -109,7 +109,7 @@ func await(t *testing.T, lines <-chan heardLine, what string, ok func(heardLine)
 // startOnTLS runs an agent on the encrypted listener.
 func (b *broker) startOnTLS(t *testing.T) (stop func()) {
 	t.Helper()
-	b.authority.issue(t, "client")
+	b.authority.Issue(t, "client")
 	password := filepath.Join(b.dir, "password")
 	if err := os.WriteFile(password, []byte(agentPassword+"\n"), 0o600); err != nil {
 		t.Fatal(err)

@@ -118,7 +118,7 @@ func TestServiceGivesUpOnAWrongSiteFile(t *testing.T) {
 // plant publishes. Its metrics then have every name and label that the alert rules build on.
 func TestServiceReadsThroughTheBroker(t *testing.T) {
 	b := startBroker(t)
-	b.authority.issue(t, "client")
+	b.authority.Issue(t, "client")
 	dir := t.TempDir()
 	password := filepath.Join(dir, "mqtt-password")
 	if err := os.WriteFile(password, []byte(agentPassword+"\n"), 0o400); err != nil {

@@ -5,6 +5,7 @@ package deploy
 import (
 	"crypto/tls"
 	"fmt"
+	"heatreeve/ingest/authority"
 	"io"
 	"net/http"
 	"os"
@@ -27,7 +28,7 @@ func TestPrometheusScrapesBehindAPassword(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	newAuthority(t, dir).issue(t, "web")
+	authority.New(t, dir, ".crt").Issue(t, "web", "127.0.0.1")
 	port := freePort(t)
 	scrape := moved(t, scrapeBehindAPassword(t), "127.0.0.1:9617", "127.0.0.1:"+port, "interval: 15s", "interval: 1s", "timeout: 10s", "timeout: 1s",
 		"plant-ca.crt", "ca.crt", "gateway.plant.example", "127.0.0.1")

@@ -275,8 +275,8 @@ func TestTwoClientsWithOneID(t *testing.T) {
 
 func TestTLSWithMosquitto(t *testing.T) {
 	a := plantAuthority(t)
-	b := newMosquitto(t, "allow_anonymous true", "cafile "+a.path("ca.pem"), "certfile "+a.path("broker.pem"),
-		"keyfile "+a.path("broker.key"), "require_certificate true")
+	b := newMosquitto(t, "allow_anonymous true", "cafile "+a.Path("ca.pem"), "certfile "+a.Path("broker.pem"),
+		"keyfile "+a.Path("broker.key"), "require_certificate true")
 	b.start(t)
 	checkTLS(t, a, "mqtts://127.0.0.1:"+b.port)
 }

@@ -30,7 +30,7 @@ func TestWindowOfTwentyOverEachWay(t *testing.T) {
 	const messages = 1500
 	a := plantAuthority(t)
 	secure, socket, both := free(t), free(t), free(t)
-	certificates := []string{"cafile " + a.path("ca.pem"), "certfile " + a.path("broker.pem"), "keyfile " + a.path("broker.key")}
+	certificates := []string{"cafile " + a.Path("ca.pem"), "certfile " + a.Path("broker.pem"), "keyfile " + a.Path("broker.key")}
 	settings := []string{"allow_anonymous true", "max_inflight_messages 20", "listener " + socket + " 127.0.0.1", "protocol websockets"}
 	settings = append(append(settings, "listener "+secure+" 127.0.0.1"), certificates...)
 	settings = append(append(settings, "listener "+both+" 127.0.0.1", "protocol websockets"), certificates...)
@@ -38,8 +38,8 @@ func TestWindowOfTwentyOverEachWay(t *testing.T) {
 	b.start(t)
 	for _, o := range []Options{
 		{URL: b.url()}, {URL: "ws://127.0.0.1:" + socket},
-		{URL: "mqtts://127.0.0.1:" + secure, CAFile: a.path("ca.pem"), ServerName: "broker.plant"},
-		{URL: "wss://127.0.0.1:" + both, CAFile: a.path("ca.pem"), ServerName: "broker.plant"},
+		{URL: "mqtts://127.0.0.1:" + secure, CAFile: a.Path("ca.pem"), ServerName: "broker.plant"},
+		{URL: "wss://127.0.0.1:" + both, CAFile: a.Path("ca.pem"), ServerName: "broker.plant"},
 	} {
 		scheme, _, _ := strings.Cut(o.URL, ":")
 		t.Run(scheme, func(t *testing.T) {

@@ -66,11 +66,11 @@ func TestWebsocket(t *testing.T) {
 
 func TestWebsocketWithTLS(t *testing.T) {
 	a := plantAuthority(t)
-	pair, err := tls.LoadX509KeyPair(a.path("broker.pem"), a.path("broker.key"))
+	pair, err := tls.LoadX509KeyPair(a.Path("broker.pem"), a.Path("broker.key"))
 	if err != nil {
 		t.Fatal(err)
 	}
-	pool, err := readPool(a.path("ca.pem"))
+	pool, err := readPool(a.Path("ca.pem"))
 	if err != nil {
 		t.Fatal(err)
 	}
