@@ -34,20 +34,15 @@ var registers = []unit.Dimension{unit.Mass, unit.Volume, unit.Amount, unit.Energ
 // of an instrument's tag, then by words, each with the values as a check.
 func guess(s *Signal) Guess {
 	g := Guess{}
-	switch {
-	case s.Says != "":
-		if u, err := unit.LookupAs(s.Says, tells...); err == nil {
-			g = Guess{Unit: u.Symbol, Sure: true, dimension: u.Dimension, Why: fmt.Sprintf("the payload says %q", s.Says)}
-			break
-		}
-		g.Why = fmt.Sprintf("the payload says %q, which is no unit that is known", s.Says)
-	default:
+	if s.Says != "" {
+		g = said(s)
+	} else {
 		g = fromNames(s)
 	}
 	if g.dimension != 0 {
 		g.Quantity = g.dimension.String()
 	}
-	if g.dimension == unit.Temperature && g.Unit == "" {
+	if g.dimension == unit.Temperature && g.Unit == "" && s.Says == "" {
 		g.scale(s)
 	}
 	switch {
@@ -56,6 +51,29 @@ func guess(s *Signal) Guess {
 		g.because("it only rises")
 	case g.dimension == unit.Energy:
 		g.Counts = true // what else a plant would publish as one is no input of a load
+	}
+	return g
+}
+
+// said judges by the unit that the payload names. Where that is none that a load can use, as
+// of a signal in mA, names tell the quantity, and neither they nor the values its unit.
+func said(s *Signal) Guess {
+	says := fmt.Sprintf("the payload says %q", s.Says)
+	if s.Metric != "" {
+		says = fmt.Sprintf("its property %q says %q", s.Unit, s.Says)
+	}
+	if u, err := unit.LookupAs(s.Says, tells...); err == nil {
+		return Guess{Unit: u.Symbol, Sure: true, dimension: u.Dimension, Why: says}
+	}
+	if u, err := unit.LookupAs(suffixes[strings.ToLower(strings.ReplaceAll(s.Says, " ", ""))], tells...); err == nil {
+		return Guess{Unit: u.Symbol, dimension: u.Dimension, Why: fmt.Sprintf("%s, taken for %s", says, u.Symbol)}
+	}
+	g := fromNames(s)
+	g.Unit, g.Sure = "", false
+	why := g.Why
+	g.Why = says + ", which is no unit of what a load uses"
+	if why != "" {
+		g.because(why)
 	}
 	return g
 }

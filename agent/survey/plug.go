@@ -1,7 +1,9 @@
 package survey
 
 import (
+	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"heatreeve/ingest/quality"
 	"heatreeve/ingest/sparkplug"
@@ -23,7 +25,11 @@ type plug struct {
 	ids     map[metric]int
 	metrics []metric // by id
 	out     []sparkplug.Reading
+	units   map[int]property // by id
 }
+
+// property is one that names a unit.
+type property struct{ key, text string }
 
 // metric is one of a Sparkplug source.
 type metric struct {
@@ -32,8 +38,8 @@ type metric struct {
 }
 
 func newPlug() *plug {
-	p := &plug{ids: make(map[metric]int)}
-	p.space = sparkplug.NewSpace(sparkplug.Options{Want: p.want, Ahead: stampedAhead, Nodes: mostNodes})
+	p := &plug{ids: make(map[metric]int), units: make(map[int]property)}
+	p.space = sparkplug.NewSpace(sparkplug.Options{Want: p.want, Told: p.told, Ahead: stampedAhead, Nodes: mostNodes})
 	return p
 }
 
@@ -53,6 +59,13 @@ func (p *plug) want(source sparkplug.Source, name []byte) int {
 	p.ids[m] = len(p.metrics)
 	p.metrics = append(p.metrics, m)
 	return p.ids[m]
+}
+
+// told keeps the property that names the unit of a metric, as the newest message has it.
+func (p *plug) told(id int, key, text []byte) {
+	if slices.Contains(unitWords, plain(string(key))) && len(text) > 0 && len(text) <= longestWord && utf8.Valid(text) {
+		p.units[id] = property{string(key), string(text)}
+	}
 }
 
 // hearPlug takes in a message of the Sparkplug namespace. mu is held.
@@ -87,9 +100,11 @@ func (s *Survey) plugReading(r sparkplug.Reading, arrival int64) {
 	}
 	t.plug, t.shape = true, Plug
 	place := t.place(of.name)
-	switch {
-	case place == nil:
+	if place == nil {
 		return
+	}
+	place.unit = s.plug.units[r.ID]
+	switch {
 	case r.Wrong != sparkplug.Right || r.Truth:
 		place.others++
 		return

@@ -33,6 +33,8 @@ type series struct {
 	stamps  int     // values that are an instant near their arrival
 	lags    []int64 // of live stamps behind their arrival, ns
 	lagNext int
+
+	unit property // of a Sparkplug metric: what names its unit
 }
 
 func (s *series) hear(kind jsontext.Kind, raw []byte, m *Message) {

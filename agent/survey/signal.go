@@ -13,7 +13,8 @@ type Signal struct {
 	Metric string `json:"metric,omitempty"`
 	// Samples is the pointer of the list that the messages carry, "" where they carry one
 	// value. Value, Time, Quality and Unit are pointers in the message, or in an
-	// element of that list; "" for none, and as Value for a bare number.
+	// element of that list; "" for none, and as Value for a bare number. Of a metric, Unit is
+	// the key of the property that names it.
 	Samples string `json:"samples,omitempty"`
 	Value   string `json:"value"`
 	Time    string `json:"time,omitempty"`
@@ -51,7 +52,7 @@ type Clock struct {
 var (
 	timeWords    = []string{"t", "ts", "time", "timestamp", "stamp", "datetime", "date", "at", "when"}
 	qualityWords = []string{"q", "quality", "qual", "status", "statuscode", "state", "qc", "opcquality"}
-	unitWords    = []string{"u", "unit", "units", "uom", "engunit", "eu"}
+	unitWords    = []string{"u", "unit", "units", "uom", "engunit", "engunits", "engineeringunit", "engineeringunits", "eu"}
 	valueWords   = []string{"v", "val", "value", "reading", "pv", "measurement", "data"}
 	otherWords   = []string{"seq", "sequence", "id", "msgid", "version", "ver", "schema", "alias", "rssi", "snr", "battery", "uptime", "index", "count", "n", "bdseq"}
 )
@@ -101,6 +102,7 @@ func (t *topic) signal(pointer string) Signal {
 	}
 	if t.plug {
 		told.Metric, told.Value, told.Clock = pointer, "", s.clock()
+		told.Unit, told.Says = s.unit.key, s.unit.text
 		told.Guess = guess(&told)
 		return told
 	}

@@ -56,6 +56,9 @@ func (s *Space) known(n *node, src *source, m *Metric) (id int, d Datatype) {
 // the message was sent, and at the earliest from when the metric was gone.
 func (s *Space) reading(src *source, id int, d Datatype, birth bool) Reading {
 	m, p, w := &s.at, &s.payload, s.metric(id, src)
+	if s.o.Told != nil {
+		texts(m.properties, func(key, text []byte) { s.o.Told(id, key, text) })
+	}
 	r := Reading{ID: id, Mark: m.mark(), Historical: m.Historical, Datatype: d, Stamped: m.Stamped, Stamp: m.Timestamp}
 	if !m.Historical && p.Stamped && (!m.Stamped || (birth || !w.live) && p.Timestamp > m.Timestamp) {
 		r.Stamped, r.Stamp = true, p.Timestamp

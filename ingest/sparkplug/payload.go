@@ -138,8 +138,9 @@ type Metric struct {
 	Transient  bool // not to be stored
 	Null       bool // there is no value
 
-	field field
-	bits  uint64
+	field      field
+	bits       uint64
+	properties []byte // as they came; nil: none
 }
 
 func (m *Metric) read(b []byte) error {
@@ -198,6 +199,7 @@ func (m *Metric) bytes(num protowire.Number, b []byte) int {
 	case num == metricName:
 		m.Name = v
 	case num == metricProperties:
+		m.properties = v
 		if q, ok, sound := qualityOf(v); !sound {
 			return groups
 		} else if ok {

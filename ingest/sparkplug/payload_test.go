@@ -239,3 +239,29 @@ func TestSources(t *testing.T) {
 		t.Errorf("filters %q; want %q", got, want)
 	}
 }
+
+// Texts among the properties of a metric are told under their keys, in whatever order keys and
+// values stand; numbers are not, and a broken set tells what stands before the break.
+func TestTextsOfProperties(t *testing.T) {
+	text := func(s string) []byte { return new(message).varint(1, 12).bytes(propertyText, []byte(s)).b }
+	number := new(message).varint(1, uint64(Int32)).varint(propertyInt, 192).b
+	set := new(message).bytes(setValues, text("°F")).bytes(setValues, number).bytes(setKeys, []byte("engUnit")).bytes(setKeys, []byte(qualityKey)).
+		bytes(setKeys, []byte("documentation")).bytes(setValues, text("supply")).b
+	const want = "engUnit=°F documentation=supply "
+	got := ""
+	tell := func(key, text []byte) { got += string(key) + "=" + string(text) + " " }
+	if texts(append(set[:len(set):len(set)], 0xff), tell); got != want {
+		t.Errorf("broken set: told %q, want %q", got, want)
+	}
+	got = ""
+	s := NewSpace(Options{Nodes: 1, Want: func(Source, []byte) int { return 7 }, Told: func(id int, key, text []byte) {
+		if id != 7 {
+			t.Errorf("told of %d, want 7", id)
+		}
+		tell(key, text)
+	}})
+	birth := at(1000).with(named("T").kind(Double).double(3).bytes(metricProperties, set)).b
+	if _, err := s.Take(Topic{Kind: DBirth, Source: Source{Group: "g", Node: "n", Device: "d"}}, birth, 2e9, nil); err != nil || got != want {
+		t.Errorf("birth: told %q, %v; want %q", got, err, want)
+	}
+}

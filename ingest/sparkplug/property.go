@@ -14,6 +14,7 @@ const (
 	propertyNull = 2
 	propertyInt  = 3
 	propertyLong = 4
+	propertyText = 8
 )
 
 // qualityKey is the property of a metric that tells its quality: Sparkplug 3.0, chapter 6.
@@ -118,4 +119,35 @@ func (m *Metric) mark() quality.Mark {
 		return mark
 	}
 	return quality.Doubted
+}
+
+// texts calls tell with the key of each property that is a text, and with that. They point
+// into the set; of one that is none it reads as far as it can.
+func texts(set []byte, tell func(key, text []byte)) {
+	var keys, values [][]byte
+	for b := set; len(b) > 0; {
+		num, v, n := member(b)
+		if n < 0 {
+			break
+		}
+		switch num {
+		case setKeys:
+			keys = append(keys, v)
+		case setValues:
+			values = append(values, v)
+		}
+		b = b[n:]
+	}
+	for i := range min(len(keys), len(values)) {
+		for b := values[i]; len(b) > 0; {
+			num, v, n := member(b)
+			if n < 0 {
+				break
+			}
+			if num == propertyText && v != nil {
+				tell(keys[i], v)
+			}
+			b = b[n:]
+		}
+	}
 }

@@ -14,6 +14,9 @@ type Options struct {
 	// only. It is asked for each metric of a birth, and for each that data name in full; it
 	// must not keep name.
 	Want func(s Source, name []byte) int
+	// Told is told each property of a metric that is a text, such as its unit, as often as it
+	// comes; nil: nobody is. It must not keep key and text.
+	Told func(id int, key, text []byte)
 	// Ahead is how far after its arrival a message may be stamped, ns, and Earliest the
 	// oldest stamp that a clock which was set can have.
 	Ahead, Earliest int64
