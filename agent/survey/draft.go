@@ -73,26 +73,34 @@ func brokerKeys(b site.Broker) string {
 }
 
 func (d Draft) tags(w io.Writer) {
-	var rest []*Signal
+	var states, rest []*Signal
 	for i := range d.Topics {
 		t := &d.Topics[i]
 		for k := range t.Signals {
-			s := &t.Signals[k]
-			if s.Guess.dimension == 0 {
+			switch s := &t.Signals[k]; {
+			case s.Truth:
+				states = append(states, s)
+			case s.Guess.dimension == 0:
 				rest = append(rest, s)
-				continue
+			default:
+				fmt.Fprintf(w, "  %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
 			}
-			fmt.Fprintf(w, "  %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
 		}
 	}
-	if len(rest) > 0 {
-		fmt.Fprint(w, "\n  # Nothing tells what these are:\n")
-	}
-	for _, s := range rest {
-		fmt.Fprintf(w, "  # %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
-	}
+	out(w, "States, true or false, for running or bypass of a load; no other tag reads them:", states)
+	out(w, "Nothing tells what these are:", rest)
 	for _, hurdle := range Hurdles(d.Topics) {
 		fmt.Fprintf(w, "  # Not read: %s\n", oneLine(hurdle))
+	}
+}
+
+// out writes tags as remarks.
+func out(w io.Writer, why string, all []*Signal) {
+	if len(all) > 0 {
+		fmt.Fprintf(w, "\n  # %s\n", why)
+	}
+	for _, s := range all {
+		fmt.Fprintf(w, "  # %s: %s%s\n", quoted(s.Tag), s.keys(), remark(s))
 	}
 }
 
@@ -115,7 +123,11 @@ func (s *Signal) keys() string {
 	add("samples", pointer(s.Samples))
 	add("value", pointer(s.Value))
 	add("time", pointer(s.Time))
-	add("accuracy", Blank)
+	if s.Truth {
+		add("accuracy", "± 1 %") // a state is what it is; the key is asked for
+	} else {
+		add("accuracy", Blank)
+	}
 	if s.Guess.Counts {
 		add("counts", "{}")
 	} else if s.Metric == "" { // by Sparkplug the source's life tells
@@ -172,6 +184,8 @@ func remark(s *Signal) string {
 	}
 	g := s.Guess
 	switch {
+	case s.Truth:
+		said = States(s)
 	case g.Unit == "" && g.Quantity != "":
 		said += "; " + g.Quantity + ", unit to fill in: " + g.Why
 	case g.Unit == "":
@@ -187,6 +201,17 @@ func remark(s *Signal) string {
 		said += "; stamps " + Lag(s.Clock)
 	}
 	return " # " + oneLine(said)
+}
+
+// States tells which of true and false came.
+func States(s *Signal) string {
+	switch {
+	case s.Min != s.Max:
+		return "false and true"
+	case s.Min == 1:
+		return "true"
+	}
+	return "false"
 }
 
 // Lag tells how stamps lie.

@@ -33,6 +33,9 @@ var registers = []unit.Dimension{unit.Mass, unit.Volume, unit.Amount, unit.Energ
 // guess judges by what the payload says, then by the unit in a name, then by the letters
 // of an instrument's tag, then by words, each with the values as a check.
 func guess(s *Signal) Guess {
+	if s.Truth {
+		return Guess{Quantity: "state", Unit: "%", Sure: true, Why: "a state, for running or bypass of a load, which read true as 100 %"}
+	}
 	g := Guess{}
 	if s.Says != "" {
 		g = said(s)

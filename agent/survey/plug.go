@@ -1,6 +1,7 @@
 package survey
 
 import (
+	"bytes"
 	"slices"
 	"strings"
 	"unicode/utf8"
@@ -43,9 +44,10 @@ func newPlug() *plug {
 	return p
 }
 
-// want takes up every metric, but not the life of its source.
+// want takes up every metric, but not the life of its source, and none by which a node is
+// commanded.
 func (p *plug) want(source sparkplug.Source, name []byte) int {
-	if name == nil {
+	if name == nil || bytes.HasPrefix(name, []byte("Node Control/")) {
 		return -1
 	}
 	m := metric{source, string(name)}
@@ -105,19 +107,27 @@ func (s *Survey) plugReading(r sparkplug.Reading, arrival int64) {
 	}
 	place.unit = s.plug.units[r.ID]
 	switch {
-	case r.Wrong != sparkplug.Right || r.Truth:
+	case r.Wrong != sparkplug.Right:
 		place.others++
 		return
 	case r.Mark.Quality() == quality.Bad:
 		place.nulls++
 		return
-	}
-	place.value(r.Value)
-	if _, after, ok := strings.Cut(number(r.Value), "."); ok && len(after) < 6 {
-		place.decimals = max(place.decimals, len(after))
+	case r.Truth:
+		place.truth(r.Value != 0)
+	default:
+		place.figure(r.Value)
 	}
 	if r.Stamped && !r.Historical {
 		place.stamps++
 		place.lag(arrival - r.At)
+	}
+}
+
+// figure takes in a number that came in no writing.
+func (s *series) figure(x float64) {
+	s.value(x)
+	if _, after, ok := strings.Cut(number(x), "."); ok && len(after) < 6 {
+		s.decimals = max(s.decimals, len(after))
 	}
 }

@@ -24,6 +24,7 @@ const (
 // series is what came at one place of a topic's messages.
 type series struct {
 	numbers, texts, nulls, others int
+	truths                        [2]int // false and true
 
 	min, max, last float64
 	up, down       int // how often the number was above, and below, the one before
@@ -46,6 +47,8 @@ func (s *series) hear(kind jsontext.Kind, raw []byte, m *Message) {
 		s.word(raw)
 	case 'n':
 		s.nulls++
+	case 'f', 't':
+		s.truth(kind == 't')
 	default:
 		s.others++
 	}
@@ -78,6 +81,11 @@ func (s *series) value(x float64) {
 	s.numbers++
 	s.min, s.max, s.last = math.Min(s.min, x), math.Max(s.max, x), x
 }
+
+func (s *series) truth(is bool) { s.truths[fromBool(is)]++ }
+
+// tells tells whether true and false came, and no number.
+func (s *series) tells() bool { return s.numbers+s.texts == 0 && s.truths[0]+s.truths[1] > 0 }
 
 func (s *series) word(raw []byte) {
 	text, err := jsontext.AppendUnquote(nil, raw)

@@ -6,7 +6,7 @@ import (
 	"strings"
 )
 
-// Signal is one number that a topic carries.
+// Signal is one number, or one state, that a topic carries.
 type Signal struct {
 	Topic string `json:"-"`
 	// Metric is the name of a Sparkplug metric, whose source is Topic; "" of any other.
@@ -20,6 +20,9 @@ type Signal struct {
 	Time    string `json:"time,omitempty"`
 	Quality string `json:"quality,omitempty"`
 	Unit    string `json:"unit,omitempty"`
+
+	// Truth tells that it is true or false, for which 1 and 0 stand below.
+	Truth bool `json:"truth,omitempty"`
 
 	Count    int     `json:"count"`
 	Nulls    int     `json:"nulls,omitempty"`
@@ -77,6 +80,8 @@ func named(pointer string, names []string) bool { return slices.Contains(names, 
 func (t *topic) measures(pointer string) bool {
 	s := t.series[pointer]
 	switch {
+	case s.tells():
+		return !named(pointer, otherWords)
 	case s.numbers == 0 || s.numbers < s.texts:
 		return false
 	case pointer == "":
@@ -95,6 +100,9 @@ func (t *topic) signal(pointer string) Signal {
 		Topic: t.name, Samples: samples, Value: within,
 		Count: s.numbers, Nulls: s.nulls, Min: s.min, Max: s.max, Last: s.last, Decimals: s.decimals,
 		Still: s.numbers > 1 && s.min == s.max, Rising: s.rising(),
+	}
+	if s.tells() {
+		told.truths(s)
 	}
 	if t.live > 1 {
 		told.Every = float64(t.last-t.first) / float64(t.live-1) / 1e9
@@ -128,6 +136,13 @@ func (t *topic) signal(pointer string) Signal {
 	}
 	told.Guess = guess(&told)
 	return told
+}
+
+// truths sums up what came of true and false.
+func (told *Signal) truths(s *series) {
+	told.Truth, told.Count = true, s.truths[0]+s.truths[1]
+	told.Min, told.Max = float64(fromBool(s.truths[0] == 0)), float64(fromBool(s.truths[1] > 0))
+	told.Last, told.Still = told.Max, told.Count > 1 && told.Min == told.Max
 }
 
 // beside finds the place that says something about the value at pointer: in the object

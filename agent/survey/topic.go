@@ -17,8 +17,9 @@ type Shape string
 const (
 	Nothing Shape = "empty"  // no payload, or blanks
 	Bare    Shape = "number" // nothing but a number
-	Words   Shape = "text"   // printable, and no JSON
-	JSON    Shape = "JSON"   // an object or a list
+	Truth   Shape = "true or false"
+	Words   Shape = "text" // printable, and no JSON
+	JSON    Shape = "JSON" // an object or a list
 	Plug    Shape = "Sparkplug B"
 	Bytes   Shape = "bytes"    // not printable
 	Mixed   Shape = "mixed"    // now one, now another
@@ -88,6 +89,10 @@ func (t *topic) look(m *Message) Shape {
 		if _, ok := ingest.Number(text); ok {
 			t.at("", '0', text, m)
 			return Bare
+		}
+		if is := string(text); is == "true" || is == "false" {
+			t.at("", jsontext.Kind(text[0]), text, m)
+			return Truth
 		}
 	}
 	if !utf8.Valid(text) || bytes.ContainsFunc(text, func(r rune) bool { return r < ' ' && r != '\t' && r != '\n' && r != '\r' }) {

@@ -128,6 +128,9 @@ func every(s float64, kept bool) string {
 }
 
 func valuesOf(s *survey.Signal) string {
+	if s.Truth {
+		return survey.States(s)
+	}
 	low, high := fixed(s.Min, s.Decimals), fixed(s.Max, s.Decimals)
 	if low == high {
 		return low
@@ -146,6 +149,8 @@ func likely(s *survey.Signal) string {
 	g := s.Guess
 	say := g.Unit
 	switch {
+	case s.Truth:
+		return g.Quantity
 	case g.Unit == "" && g.Quantity == "":
 		say = ""
 	case g.Unit == "":
