@@ -133,9 +133,9 @@ var (
 // sides tells inlet from outlet: by words, or else by the order of the tags.
 func sides(a, b *Signal) (in, out *Signal, why string) {
 	switch {
-	case side(a) == 1 || side(b) == -1:
+	case side(a) > side(b):
 		return a, b, "by the words in their names"
-	case side(b) == 1 || side(a) == -1:
+	case side(b) > side(a):
 		return b, a, "by the words in their names"
 	case a.Tag > b.Tag:
 		a, b = b, a
@@ -146,12 +146,22 @@ func sides(a, b *Signal) (in, out *Signal, why string) {
 // side is 1 for the inlet, -1 for the outlet and 0 where no word tells.
 func side(s *Signal) int {
 	for _, w := range split(s.Tag) {
-		switch w = strings.TrimRight(w, "0123456789"); {
-		case slices.Contains(inWords, w):
-			return 1
-		case slices.Contains(outWords, w):
-			return -1
+		if of := sideOf(strings.TrimRight(w, "0123456789")); of != 0 {
+			return of
 		}
+	}
+	if parts := own(s); len(parts) > 1 {
+		return sideOf(strings.ToLower(parts[len(parts)-2]))
+	}
+	return 0
+}
+
+func sideOf(word string) int {
+	switch {
+	case slices.Contains(inWords, word):
+		return 1
+	case slices.Contains(outWords, word):
+		return -1
 	}
 	return 0
 }
@@ -159,7 +169,8 @@ func side(s *Signal) int {
 var lastDigit = regexp.MustCompile(`^([A-Z]{1,4}[-_ .]?)([0-9]{1,5})[0-9]([A-Z]?)$`)
 
 // stem is what the signals of one circuit have in common: their place without what tells
-// quantity, side and unit, and of an instrument's number all but the last digit.
+// quantity, side and unit, as in "supply/temperature", and of an instrument's number all but
+// the last digit.
 func stem(s *Signal) string {
 	parts := own(s)
 	last, _, _ := inBrackets(parts[len(parts)-1])
@@ -168,7 +179,11 @@ func stem(s *Signal) string {
 	} else {
 		last = strings.Join(kept(last), "-")
 	}
-	parts = slices.DeleteFunc(append(slices.Clone(parts[:len(parts)-1]), last), func(p string) bool { return p == "" })
+	before := slices.Clone(parts[:len(parts)-1])
+	if n := len(before) - 1; n > 0 && sideOf(strings.ToLower(before[n])) != 0 {
+		before = before[:n]
+	}
+	parts = slices.DeleteFunc(append(before, last), func(p string) bool { return p == "" })
 	return strings.Join(parts, "/")
 }
 

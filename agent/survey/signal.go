@@ -122,7 +122,12 @@ func (t *topic) signal(pointer string) Signal {
 		_, told.Quality = list(at)
 		told.Qualities = t.series[at].met()
 	}
-	if at, ok := t.beside(pointer, func(p string, x *series) bool { return named(p, unitWords) && len(x.words) > 0 }); ok {
+	names := func(p string, x *series) bool { return named(p, unitWords) && len(x.words) > 0 }
+	at, ok := t.beside(pointer, names)
+	if !ok && samples != "" && samples != whole {
+		at, ok = t.beside(samples, names) // beside the list, for all of it
+	}
+	if ok {
 		_, told.Unit = list(at)
 		told.Says = t.series[at].words[0]
 	}

@@ -84,6 +84,9 @@ func TestListOfStampedSamples(t *testing.T) {
 	if got.Samples != "/data" || got.Value != "/value" || got.Time != "/t" || got.Count != 2 {
 		t.Errorf("samples %q, value %q, time %q, count %d", got.Samples, got.Value, got.Time, got.Count)
 	}
+	if got.Unit != "/unit" || got.Guess.Unit != "barg" || !got.Guess.Sure { // beside the list, for all of it
+		t.Errorf("unit at %q, %+v; want barg, as the payload says", got.Unit, got.Guess)
+	}
 }
 
 // A message that is nothing but a list is one of samples, and the draft says so.
@@ -95,6 +98,28 @@ func TestListThatIsTheWholeMessage(t *testing.T) {
 	}
 	if keys := got.keys(); !strings.Contains(keys, "samples: whole, value: /value, time: /t,") {
 		t.Errorf("keys %s", keys)
+	}
+}
+
+// Levels that tell the side keep the signals of one circuit no more apart than words do.
+func TestLoadOfLevelsThatTellTheSide(t *testing.T) {
+	found, _ := Loads(heard(map[string][]string{"hall/loop/supply/temperature": {"80"}, "hall/loop/return/temperature": {"60"}, "hall/loop/flow": {"9"}, "hall/loop/outlet/pressure": {"9"}}).Topics())
+	if len(found) != 1 || found[0].Name != "loop" || found[0].Flow != "flow" || found[0].Inlet != "supply-temperature" || found[0].Outlet != "return-temperature" || found[0].Pressure != "pressure" {
+		t.Errorf("%+v, want one load", found)
+	}
+}
+
+// The level above tells the side where the name does not; one word for both tells nothing.
+func TestSidesByLevels(t *testing.T) {
+	for _, tt := range []struct{ one, other, inlet, why string }{
+		{"w/return/TT-101", "w/supply/TT-102", "TT-102", "by the words"},
+		{"w/supply_temp1", "w/supply_temp2", "supply_temp1", "taken in the order of their names"},
+		{"w/TT-101", "w/TT-102", "TT-101", "taken in the order of their names"},
+	} {
+		found, _ := Loads(heard(map[string][]string{tt.one: {"60"}, tt.other: {"80"}, "w/FT-101": {"9"}, "w/flow": {"9"}}).Topics())
+		if len(found) != 1 || found[0].Inlet != tt.inlet || !strings.HasPrefix(found[0].Why, tt.why) {
+			t.Errorf("%s and %s: %+v; want inlet %s, %s", tt.one, tt.other, found, tt.inlet, tt.why)
+		}
 	}
 }
 
