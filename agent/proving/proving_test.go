@@ -226,6 +226,18 @@ func TestRefusedMessages(t *testing.T) {
 	}
 }
 
+// A pump that runs and a bypass that is shut stand as they are: no note says that they are stuck.
+func TestStatesThatStand(t *testing.T) {
+	s, trial := bench(t, strings.NewReplacer("loads:", `  P-1: {topic: a/P-1, unit: "%", accuracy: ± 1 %}
+  V-1: {topic: a/V-1, unit: "%", accuracy: ± 1 %}
+loads:`, "    witness: ET-1", "    witness: ET-1\n    running: P-1\n    bypass: {open: V-1}").Replace(file))
+	sound.send(s, trial, nil)
+	r := trial.Tell(60, make([][]proving.Refused, len(s.Tags)))
+	if got := strings.Join(found(&r), "\n"); strings.Contains(got, "P-1: has not moved") || strings.Contains(got, "V-1: has not moved") || !strings.Contains(got, "TT-1: has not moved") {
+		t.Error(got)
+	}
+}
+
 // The units that a flow is tried in are those of the trade that differ by the well-known factors.
 func TestFlowUnitsHaveTheWellKnownFactors(t *testing.T) {
 	have := map[string]float64{}

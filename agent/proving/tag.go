@@ -93,7 +93,8 @@ type Tag struct {
 	Jitter      float64 // half of the span of the middle 80 % of it, s
 	Findings    []Finding
 
-	siblings int // tags of the same Sparkplug source that were heard
+	state    bool // it is of a pump or a bypass, which stand as they are for days
+	siblings int  // tags of the same Sparkplug source that were heard
 }
 
 // Doubtful tells whether the newest reading is not good.
@@ -105,7 +106,7 @@ func (t *Trial) tellTag(i int, seconds float64, refused []Refused) Tag {
 	if m := declared.Metric; m != nil {
 		told.Topic, told.Stamped = strings.TrimSpace(m.Source()+" "+m.Name), m.Name != ""
 	}
-	told.siblings = t.siblings(i)
+	told.siblings, told.state = t.siblings(i), t.state(i)
 	if heard.live > 1 {
 		told.Every = float64(heard.last-heard.first) / float64(heard.live-1) / 1e9
 	}
@@ -132,6 +133,13 @@ func (t *Trial) siblings(i int) int {
 		}
 	}
 	return n
+}
+
+// state tells whether the tag is of the pump or the bypass of a load.
+func (t *Trial) state(i int) bool {
+	return slices.ContainsFunc(t.site.Loads, func(l site.HeatLoad) bool {
+		return l.HasRunning && l.Running.Tag == i || l.HasBypass && l.Bypass.Tag == i
+	})
 }
 
 // wanted is how many equal readings in a row look stuck.
@@ -170,7 +178,7 @@ func (t *tagTrial) findings(declared *site.Tag, told *Tag, seconds float64, refu
 	if gap := time.Duration(t.gap); !silent && declared.Holds() > 0 && gap > declared.Holds() {
 		add(Fault, "%v without a reading, but max_age is %v: what needs it is blind in between", gap.Round(time.Second), declared.Holds())
 	}
-	if t.live >= wanted && t.min == t.max && declared.Counter == nil && declared.Liveness == nil && !declared.OnChange {
+	if t.live >= wanted && t.min == t.max && declared.Counter == nil && declared.Liveness == nil && !declared.OnChange && !told.state {
 		add(Note, "has not moved in %d readings; stuck, or with a coarse step", t.live)
 	}
 	if told.Stamped && len(t.lags) > 0 {
