@@ -35,8 +35,9 @@ func (t *Trial) tellLoad(i int) Load {
 		j.rest()
 	default:
 		j.sides()
-		j.flowUnit()
-		j.pipe()
+		if j.flowUnit() || !j.register() {
+			j.pipe()
+		}
 	}
 	return told
 }
@@ -98,18 +99,18 @@ func (j judge) difference() float64 {
 }
 
 // flowUnit looks, where the duty is far from its design, for a unit of the flow with which
-// it would be near.
-func (j judge) flowUnit() {
+// it would be near, and tells whether it found any.
+func (j judge) flowUnit() bool {
 	f, d := &j.told.Figure, j.declared.Design
 	duty := math.Abs(f.Duty)
 	allowance := d.Allow*d.Duty + 2*f.Uncertainty
-	if d.Duty == 0 || duty == 0 || near(duty, d.Duty, allowance) {
-		return
+	if d.Duty == 0 || duty == 0 || j.atDesign() {
+		return false
 	}
 	j.add(Note, "the duty is %.3g times the design of %s; allowed are ±%.3g %%", f.Duty/d.Duty, kilowatts(d.Duty), 100*d.Allow)
 	src := j.declared.Stream.Flow
 	if src.Constant() || j.site.Tags[src.Tag].Counter != nil {
-		return
+		return false
 	}
 	tag := &j.site.Tags[src.Tag]
 	var fit []string
@@ -123,6 +124,7 @@ func (j judge) flowUnit() {
 	if len(fit) > 0 {
 		j.add(Fault, "if %s were not in %s but in %s, it would be at its design: check the unit of the meter", tag.Name, tag.Unit.Symbol, strings.Join(fit, " or "))
 	}
+	return len(fit) > 0
 }
 
 // pressures looks for gauge pressures that were taken for absolute ones, and the other
@@ -231,7 +233,7 @@ func (j judge) witness(pipes [2]string, power float64) {
 	tag := &j.site.Tags[j.declared.Witness.Tag]
 	apart := math.Abs(ours[0] - ours[1])
 	heard := &j.tags[j.declared.Witness.Tag]
-	least := 3 * (heard.resolution(tag.Resolution) + float64(j.cfg.Grid)/1e9*math.Abs(j.told.Figure.Duty))
+	least := j.blur(1)
 	switch off := [2]float64{math.Abs(counted - ours[0]), math.Abs(counted - ours[1])}; {
 	case counted != 0 && min(off[0], off[1]) > max(least, apart):
 		j.add(Note, "its witness %s agrees with neither: off by %s and %s", tag.Name, percent(off[0]/counted), percent(off[1]/counted))

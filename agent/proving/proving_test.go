@@ -55,8 +55,12 @@ func config(s *site.Site) loads.Config {
 		cfg.Tags = append(cfg.Tags, tag)
 	}
 	l := &s.Loads[0]
+	kind := loads.VolumeFlow
+	if l.Stream.FlowKind == unit.MassFlow {
+		kind = loads.MassFlow
+	}
 	cfg.Loads = []loads.Load{{Name: l.Name, HasWitness: l.HasWitness, Witness: loads.Source(l.Witness), Stream: loads.Stream{
-		Fluid: l.Stream.Fluid, Flow: loads.Source(l.Stream.Flow), FlowKind: loads.VolumeFlow, Inlet: loads.Source(l.Stream.Inlet), Outlet: loads.Source(l.Stream.Outlet),
+		Fluid: l.Stream.Fluid, Flow: loads.Source(l.Stream.Flow), FlowKind: kind, Inlet: loads.Source(l.Stream.Inlet), Outlet: loads.Source(l.Stream.Outlet),
 		Pressure: loads.Source(l.Stream.Pressure), OutletPressure: loads.Source(l.Stream.OutletPressure),
 		MeterAtOutlet: l.Stream.MeterAtOutlet, Gives: l.Stream.Gives, Margin: l.Stream.Margin, IdleBelow: l.Stream.IdleBelow,
 	}}}
