@@ -4,6 +4,7 @@ import (
 	"strings"
 	"testing"
 
+	"heatreeve/agent/loads"
 	"heatreeve/agent/proving"
 )
 
@@ -28,5 +29,21 @@ func TestMetricOfAWrongName(t *testing.T) {
 	r := trial.Tell(60, make([][]proving.Refused, len(s.Tags)))
 	if all := r.Tags[0].Findings; len(all) != 1 || all[0].Level != proving.Fault || !strings.Contains(all[0].Text, "check its name, letter by letter") {
 		t.Errorf("%+v", all)
+	}
+}
+
+// The source itself has no unit: it is alive or gone.
+func TestSourceIsShownInWords(t *testing.T) {
+	s, trial := bench(t, strings.Replace(file, "topic: a/TT-1, unit: °C, value: /v, time: /ts", "sparkplug: plant/gw/loop, metric: T/in, unit: °C, reports: on change", 1))
+	life := len(s.Tags) - 1
+	for k, want := range map[float64]string{1: "alive", 0: "gone"} {
+		if got := s.Tags[life].Show(k); s.Tags[life].Liveness == nil || got != want {
+			t.Errorf("%g is shown as %q, want %q", k, got, want)
+		}
+	}
+	trial.Hear([]proving.Heard{{Reading: loads.Reading{Tag: life, At: epoch, Value: 1}, Arrival: epoch}})
+	r := trial.Tell(60, make([][]proving.Refused, len(s.Tags)))
+	if got := r.Tags[life].Shown; got != "alive" {
+		t.Errorf("shown %q", got)
 	}
 }

@@ -97,6 +97,13 @@ type Tag struct {
 
 // Show writes an SI value in the tag's unit, a gauge pressure as such, with six digits.
 func (t *Tag) Show(si float64) string {
+	switch {
+	case t.Liveness == nil:
+	case si > 0:
+		return "alive"
+	default:
+		return "gone"
+	}
 	if t.Unit.Gauge {
 		si -= t.Offset
 	}
