@@ -131,7 +131,7 @@ func (s *Signal) keys() string {
 	if s.Guess.Counts {
 		add("counts", "{}")
 	} else if s.Metric == "" { // by Sparkplug the source's life tells
-		add("max_age", maxAge(s.Gap))
+		add("max_age", maxAge(s.Gap, s.Clock))
 	} else {
 		add("reports", "on change")
 	}
@@ -148,10 +148,17 @@ func pointer(p string) string {
 // ages are those that a draft gives.
 var ages = []time.Duration{10 * time.Second, 30 * time.Second, time.Minute, 2 * time.Minute, 5 * time.Minute, 10 * time.Minute, 30 * time.Minute, time.Hour}
 
-// maxAge allows for two messages that do not come; "" where the default of a minute does, or
-// too few came to tell.
-func maxAge(gap float64) string {
+// mostBehind is how far behind stamps may lie, s, for a draft to allow for it: by more a clock
+// is wrong, and is to be set.
+const mostBehind = 60
+
+// maxAge allows for two messages that do not come, and for stamps that lie behind; "" where
+// the default of a minute does, or too few came to tell.
+func maxAge(gap float64, c *Clock) string {
 	want := time.Duration(3 * gap * float64(time.Second))
+	if c != nil && want > 0 && c.Behind > 0 && c.Behind <= mostBehind {
+		want += time.Duration((c.Behind + c.Jitter) * float64(time.Second))
+	}
 	if want <= 0 {
 		return ""
 	}
@@ -199,6 +206,9 @@ func remark(s *Signal) string {
 	}
 	if s.Clock != nil && math.Abs(s.Clock.Behind) > 5 {
 		said += "; stamps " + Lag(s.Clock)
+	}
+	if s.Kept {
+		said += "; only of a message that the broker had kept: nothing tells whether it is still sent"
 	}
 	return " # " + oneLine(said)
 }

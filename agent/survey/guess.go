@@ -66,10 +66,10 @@ func said(s *Signal) Guess {
 		says = fmt.Sprintf("its property %q says %q", s.Unit, s.Says)
 	}
 	if u, err := unit.LookupAs(s.Says, tells...); err == nil {
-		return Guess{Unit: u.Symbol, Sure: true, dimension: u.Dimension, Why: says}
+		return Guess{Unit: u.Symbol, Sure: true, dimension: u.Dimension, Why: says + datum(u, s.Says)}
 	}
 	if u, err := unit.LookupAs(suffixes[strings.ToLower(strings.ReplaceAll(s.Says, " ", ""))], tells...); err == nil {
-		return Guess{Unit: u.Symbol, dimension: u.Dimension, Why: fmt.Sprintf("%s, taken for %s", says, u.Symbol)}
+		return Guess{Unit: u.Symbol, dimension: u.Dimension, Why: fmt.Sprintf("%s, taken for %s%s", says, u.Symbol, datum(u, s.Says))}
 	}
 	g := fromNames(s)
 	g.Unit, g.Sure = "", false
@@ -88,11 +88,25 @@ func (g *Guess) because(why string) {
 	g.Why += why
 }
 
+// datum is what a reason says of a pressure whose unit, as it is written, leaves open what it
+// counts from: a site file takes it for absolute.
+func datum(u unit.Unit, text string) string {
+	if gauge, err := unit.LookupAs(u.Symbol+"g", unit.Pressure); err == nil && gauge.Gauge && u.Dimension == unit.Pressure && len(plain(text)) <= len(u.Symbol) {
+		return fmt.Sprintf(", taken as absolute: if it is gauge, write %s", gauge.Symbol)
+	}
+	return ""
+}
+
 // scale tells the unit of a temperature by its numbers, where they leave one only.
 func (g *Guess) scale(s *Signal) {
 	switch span := number(s.Min) + " to " + number(s.Max); {
 	case s.Min >= -50 && s.Max <= 200:
 		g.Unit = "°C"
+		if s.Max > 100 {
+			span += " fits °C of something under pressure, and °F as well"
+			g.because(span)
+			break
+		}
 		g.because(span + " fits °C")
 	case s.Min >= 223 && s.Max <= 473:
 		g.Unit = "K"
@@ -114,7 +128,7 @@ func fromNames(s *Signal) Guess {
 		words := split(name)
 		if u, text, ok := unitIn(words); ok && g.Unit == "" && (g.dimension == 0 || g.dimension == u.Dimension) {
 			g.Unit, g.dimension, g.Sure = u.Symbol, u.Dimension, true
-			g.because(fmt.Sprintf("the name %q ends in %q", name, text))
+			g.because(fmt.Sprintf("the name %q ends in %q%s", name, text, datum(u, text)))
 		}
 		if g.dimension != 0 {
 			continue

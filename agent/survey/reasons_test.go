@@ -50,3 +50,41 @@ func TestUnitOfAMetric(t *testing.T) {
 		}
 	}
 }
+
+// A unit of pressure that leaves its zero open is said to be taken as absolute.
+func TestPressureThatMayBeGauge(t *testing.T) {
+	for name, want := range map[string]bool{"pressure_bar": true, "pressure_kpa": true, "pressure_bara": false, "pressure_barg": false, "pressure_psi": true, "pressure_psia": false, "temp_degC": false} {
+		g := heard(map[string][]string{"hall/" + name: {"5.2"}}).Topics()[0].Signals[0].Guess
+		if got := strings.Contains(g.Why, "taken as absolute: if it is gauge, write "+g.Unit+"g"); got != want || g.Unit == "" {
+			t.Errorf("%s: %+v, want told %t", name, g, want)
+		}
+	}
+	if g := signals(born(measured("PT-1", 61, "engUnit", "psi")))["PT-1"].Guess; !strings.HasSuffix(g.Why, "taken as absolute: if it is gauge, write psig") {
+		t.Errorf("%+v", g)
+	}
+}
+
+// What fits °C above the boil may be °F too, and the reason says so.
+func TestTemperatureThatMayBeFahrenheit(t *testing.T) {
+	for x, want := range map[string]bool{"181": true, "81": false} {
+		if g := heard(map[string][]string{"hall/TT-1": {x}}).Topics()[0].Signals[0].Guess; g.Unit != "°C" || g.Sure || strings.Contains(g.Why, "°F as well") != want {
+			t.Errorf("%s: %+v, want °F told %t", x, g, want)
+		}
+	}
+}
+
+// A draft's max_age lets stamps lie behind as they do, and tells of what nothing live came of.
+func TestDraftOfLateAndKept(t *testing.T) {
+	s := heard(map[string][]string{"w/TT-1": stamped(`{"v": %g, "ts": %d}`, 12e9, 80, 81, 82), "w/TT-2": stamped(`{"v": %g, "ts": %d}`, 3600e9, 80, 81, 82)})
+	s.Hear(Message{Topic: "w/TT-3", Payload: []byte("24"), Retained: true, At: epoch})
+	all := signals(s)
+	for tag, want := range map[string]string{"TT-1": "max_age: 30 s}", "TT-2": "max_age: 10 s}", "TT-3": "accuracy: ___}"} {
+		sig := all[tag]
+		if got := sig.keys(); !strings.HasSuffix(got, want) {
+			t.Errorf("%s: %s, want %s", tag, got, want)
+		}
+		if got := strings.Contains(remark(&sig), "the broker had kept"); got != (tag == "TT-3") {
+			t.Errorf("%s: %s", tag, remark(&sig))
+		}
+	}
+}

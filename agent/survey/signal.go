@@ -34,6 +34,9 @@ type Signal struct {
 	Still  bool `json:"still,omitempty"`
 	Rising bool `json:"rising,omitempty"`
 
+	// Kept tells that it came in nothing but a message that the broker had kept.
+	Kept bool `json:"kept,omitempty"`
+
 	Says      string   `json:"says,omitempty"`      // the unit that the payload names
 	Qualities []string `json:"qualities,omitempty"` // words or codes met
 
@@ -100,6 +103,7 @@ func (t *topic) signal(pointer string) Signal {
 		Topic: t.name, Samples: samples, Value: within,
 		Count: s.numbers, Nulls: s.nulls, Min: s.min, Max: s.max, Last: s.last, Decimals: s.decimals,
 		Still: s.numbers > 1 && s.min == s.max, Rising: s.rising(),
+		Kept: t.live == 0,
 	}
 	if s.tells() {
 		told.truths(s)
