@@ -85,8 +85,8 @@ type Progress struct {
 	Messages uint64
 	// Beyond counts the messages on topics for which there was no room.
 	Beyond uint64
-	// Unnamed counts the Sparkplug metrics that came under an alias which no birth has
-	// told since the survey began, and Malformed the messages of that namespace that
+	// Unnamed counts how often a Sparkplug metric came under an alias that no birth had told
+	// since the survey began until then, and Malformed the messages of that namespace that
 	// could not be read.
 	Unnamed, Malformed uint64
 }

@@ -43,7 +43,7 @@ func surveyTable(w io.Writer, s *survey.Survey, d survey.Draft) error {
 		fmt.Fprintf(w, "%d messages came on more topics than were looked into; give --filter, or --most.\n", p.Beyond)
 	}
 	if p.Unnamed > 0 {
-		fmt.Fprintln(w, wrapped(fmt.Sprintf("note: %d Sparkplug metrics came under an alias alone, and their node has not said since which is which: it does so at its birth. Let it be born again while a survey listens.", p.Unnamed), "  "))
+		fmt.Fprintln(w, wrapped(fmt.Sprintf("note: %d times a Sparkplug metric came under an alias alone that no birth had told until then, and is left out. A node tells at its birth: where metrics are missing, let it be born again while a survey listens.", p.Unnamed), "  "))
 	}
 	if p.Malformed > 0 {
 		fmt.Fprintf(w, "note: %d messages of the Sparkplug namespace could not be read.\n", p.Malformed)
