@@ -31,7 +31,7 @@ func (t *Trial) tellLoad(i int) Load {
 	case !f.Measured():
 		j.add(Fault, "no duty: %v: %s", f.Fault, f.Reason)
 	case declared.Vessel != nil:
-	case f.Idle:
+	case f.Idle, j.pump() == off:
 		j.rest()
 	default:
 		j.sides()
@@ -52,20 +52,6 @@ type judge struct {
 
 func (j judge) add(level Level, format string, args ...any) {
 	j.told.Findings = append(j.told.Findings, Finding{level, fmt.Sprintf(format, args...)})
-}
-
-// rest is where nothing to speak of flows: what the meter shows then is its zero.
-func (j judge) rest() {
-	src := j.declared.Stream.Flow
-	if src.Constant() || j.site.Tags[src.Tag].Counter != nil {
-		j.add(Note, "nothing flows, so there is no duty to judge; try again while it runs")
-		return
-	}
-	tag, x := &j.site.Tags[src.Tag], j.tags[src.Tag].newest.Value
-	j.add(Note, "%s shows %s, below idle_below: no duty to judge; try again while it runs", tag.Name, tag.Show(x))
-	if x != 0 && math.Abs(x) > tag.Accuracy.HalfWidth(0) {
-		j.add(Note, "if the pump is off, %s of %s is its zero offset: have its zero set", tag.Show(x), tag.Name)
-	}
 }
 
 // sides looks whether the stream gives heat where it should take it. A warm stream that

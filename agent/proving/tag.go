@@ -178,7 +178,7 @@ func (t *tagTrial) findings(declared *site.Tag, told *Tag, seconds float64, refu
 	if gap := time.Duration(t.gap); !silent && declared.Holds() > 0 && gap > declared.Holds() {
 		add(Fault, "%v without a reading, but max_age is %v: what needs it is blind in between", gap.Round(time.Second), declared.Holds())
 	}
-	if t.live >= wanted && t.min == t.max && declared.Counter == nil && declared.Liveness == nil && !declared.OnChange && !told.state {
+	if t.live >= wanted && t.min == t.max && declared.Counter == nil && declared.Liveness == nil && !declared.OnChange && !told.state && !t.stands(declared.Unit.Dimension) {
 		add(Note, "has not moved in %d readings; stuck, or with a coarse step", t.live)
 	}
 	if told.Stamped && len(t.lags) > 0 {
