@@ -139,7 +139,11 @@ func (s *Session) explain(err error) string {
 	}
 	switch {
 	case errors.Is(err, packets.ErrorRefusedBadUsernameOrPassword), errors.Is(err, packets.ErrorRefusedNotAuthorised):
-		return fmt.Sprintf("the broker refuses user %q with client id %q; check user name, password and the broker's access list", s.o.Username, s.o.ClientID)
+		who := "a client without a user name"
+		if s.o.Username != "" {
+			who = fmt.Sprintf("user %q", s.o.Username)
+		}
+		return fmt.Sprintf("the broker refuses %s with client id %q; check user name, password and the broker's access list", who, s.o.ClientID)
 	case errors.Is(err, packets.ErrorRefusedIDRejected):
 		return fmt.Sprintf("the broker refuses client id %q; choose another", s.o.ClientID)
 	case errors.Is(err, packets.ErrorRefusedServerUnavailable):

@@ -72,7 +72,7 @@ func TestRefusedConnections(t *testing.T) {
 		packets.ErrRefusedIDRejected:            `refuses client id "`,
 		packets.ErrRefusedServerUnavailable:     "not available",
 		packets.ErrRefusedBadUsernameOrPassword: "check user name, password",
-		packets.ErrRefusedNotAuthorised:         "check user name, password",
+		packets.ErrRefusedNotAuthorised:         "refuses a client without a user name with client id",
 	} {
 		t.Run(want, func(t *testing.T) {
 			url := stub(t, func(packets.ControlPacket) packets.ControlPacket { return connack(code) })
