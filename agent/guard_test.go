@@ -76,6 +76,7 @@ func TestWhoMayLook(t *testing.T) {
 		{"127.0.0.1:9617", "basic_auth_user: {}\n", false, "line 1: field basic_auth_user not found"},
 		{"127.0.0.1:9617", "http_server_config: {headers: {Server: x}}\n", false, "line 1: field http_server_config not found"},
 		{"127.0.0.1:9617", "tls_server_config: {cert_file: nowhere.pem, key_file: nowhere.key}\n", false, "nowhere.pem"},
+		{"127.0.0.1:9617", "tls_server_config: {min_version: TLS13}\n", false, "tls_server_config: cert_file is missing"},
 		{"127.0.0.1:9617", "tls_server_config: {cert_file: " + a.Path("agent.pem") + "}\n", false, "tls_server_config: key_file is missing"},
 		{"127.0.0.1:9617", server + ", client_ca_file: " + a.Path("empty.pem") + ", client_auth_type: RequireAndVerifyClientCert}\n", false, "client_ca_file holds no certificate"},
 		{"9617", "", false, `--listen "9617": missing port in address; write host:port`},

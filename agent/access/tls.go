@@ -36,9 +36,9 @@ func (s *server) config() (*tls.Config, error) {
 	default:
 		return nil, fmt.Errorf("tls_server_config: min_version is %q; allowed are TLS12 and TLS13", s.MinVersion)
 	}
-	for key, path := range map[string]string{"cert_file": s.Cert, "key_file": s.Key} {
-		if path == "" {
-			return nil, fmt.Errorf("tls_server_config: %s is missing", key)
+	for _, of := range []struct{ key, path string }{{"cert_file", s.Cert}, {"key_file", s.Key}} {
+		if of.path == "" {
+			return nil, fmt.Errorf("tls_server_config: %s is missing", of.key)
 		}
 	}
 	pair, err := tls.LoadX509KeyPair(s.Cert, s.Key)
