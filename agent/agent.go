@@ -23,6 +23,7 @@ import (
 	"github.com/prometheus/client_golang/prometheus/collectors"
 	"golang.org/x/sync/errgroup"
 
+	"heatreeve/agent/doors"
 	"heatreeve/agent/metrics"
 	"heatreeve/agent/page"
 	"heatreeve/agent/relay"
@@ -56,11 +57,23 @@ type Options struct {
 	Beat func(*view.Snapshot)
 }
 
+// looking are those that tell who may look.
+func (o *Options) looking() doors.Options {
+	return doors.Options{Listen: o.Listen, WebConfig: o.WebConfig, Openly: o.Openly}
+}
+
+// CheckLooking says what is wrong with those of the options that tell who may look, before
+// anything is started.
+func CheckLooking(o Options) error {
+	_, err := doors.NewGuard(o.looking())
+	return err
+}
+
 // Agent is one plant's agent.
 type Agent struct {
 	site    *site.Site
 	o       Options
-	guard   guard
+	guard   *doors.Guard
 	clock   *stepless // nil where Options give one
 	intakes []*intake
 	relay   *relay.Relay  // nil where the site publishes nothing; for the beat alone
@@ -77,7 +90,7 @@ type Agent struct {
 
 // New returns an agent for s that is not started yet.
 func New(s *site.Site, o Options) (*Agent, error) {
-	guard, err := newGuard(o)
+	guard, err := doors.NewGuard(o.looking())
 	if err != nil {
 		return nil, err
 	}
@@ -98,7 +111,7 @@ func New(s *site.Site, o Options) (*Agent, error) {
 }
 
 // URL is how a browser finds what listens at the address that Ready is told.
-func (a *Agent) URL(at net.Addr) string { return a.guard.url(at) }
+func (a *Agent) URL(at net.Addr) string { return a.guard.URL(at) }
 
 // Run opens the history and the listener, connects, and works until ctx ends; it
 // then commits, acknowledges, disconnects and closes, in this order. Being asked
@@ -124,29 +137,29 @@ func (a *Agent) Run(ctx context.Context) (err error) {
 	if err != nil {
 		return err
 	}
-	doors, err := openDoors(a.o.Listen)
+	open, err := doors.Open(a.o.Listen)
 	if err != nil {
 		return err
 	}
-	defer doors.close()
-	if err := a.guard.opened(doors.public.Addr(), a.o.Log); err != nil {
+	defer open.Close()
+	if err := a.guard.Admit(open, a.o.Log); err != nil {
 		return err
 	}
 	reports := newReports(history{db: db, site: a.site.Name, zone: a.site.Zone, through: books.through.Load, current: names(a.site.Loads, func(l site.HeatLoad) string { return l.Name }), units: maps.Clone(books.accounts.units)})
-	at := newAddress(doors.private.Addr())
+	at := newAddress(open.Private())
 	if err := leaveAddress(a.o.Data, at); err != nil {
 		a.o.Log.Warn("the command line will not find the agent while it runs", "error", err)
 	}
 	defer func() { err = errors.Join(err, forgetAddress(a.o.Data)) }()
-	return a.work(ctx, books, doors, at, reports)
+	return a.work(ctx, books, open, at, reports)
 }
 
 // work runs the parts. The session outlives the beat, so that the last
 // acknowledgements still go out.
-func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at address, reports *reports) error {
-	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", doors.public.Addr().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
+func (a *Agent) work(ctx context.Context, books *ledger, open *doors.Doors, at address, reports *reports) error {
+	a.o.Log.Info("heatreeve serves", "site", a.site.Name, "version", a.o.Version, "address", open.Public().String(), "loads", len(a.site.Loads), "tags", len(a.site.Tags))
 	if a.o.Ready != nil {
-		a.o.Ready(doors.public.Addr())
+		a.o.Ready(open.Public())
 	}
 	sessionCtx, endSession := context.WithCancel(context.WithoutCancel(ctx))
 	defer endSession()
@@ -164,13 +177,10 @@ func (a *Agent) work(ctx context.Context, books *ledger, doors *doors, at addres
 		return a.beats(ctx, books)
 	})
 	reg := a.registry()
-	reg.MustRegister(doors.metrics)
+	reg.MustRegister(open.Metrics)
 	public := handler(page, metricsHandler(reg, a.collector(), a.o.Log), &a.health, reports, explains, a.o.Version)
-	log := newSparing(a.o.Log.Handler(), sparingEvery)
-	g.Go(func() error { return a.guard.serve(ctx, doors.public, public, log) })
-	g.Go(func() error {
-		return servePrivate(ctx, doors.private, private(at.run, at.key, privately(public, a.orders)), log)
-	})
+	private := doors.Private(at.run, at.key, privately(public, a.orders))
+	g.Go(func() error { return open.Serve(ctx, a.guard, public, private, a.o.Log) })
 	return g.Wait()
 }
 

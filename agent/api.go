@@ -13,13 +13,10 @@ import (
 	"heatreeve/agent/page"
 )
 
-// apiPath is where the interface for programs begins. All of it can only be read.
-const apiPath = "/api/v1/"
-
 const (
-	seriesPath = apiPath + "series"
+	seriesPath = answer.Path + "series"
 	// streamPath is where the page follows the figures.
-	streamPath = apiPath + "stream"
+	streamPath = answer.Path + "stream"
 )
 
 // errNoBeat is told before the first snapshot.
@@ -45,7 +42,7 @@ func (a api) mount(mux *http.ServeMux) {
 		mux.Handle("GET "+path, h)
 	}
 	mux.HandleFunc("GET /api/", func(w http.ResponseWriter, r *http.Request) {
-		answer.Refuse(w, http.StatusNotFound, "there is no "+r.URL.Path+"; "+apiPath+"openapi.json tells what there is")
+		answer.Refuse(w, http.StatusNotFound, "there is no "+r.URL.Path+"; "+answer.Path+"openapi.json tells what there is")
 	})
 	for _, method := range []string{"POST", "PUT", "PATCH", "DELETE"} {
 		mux.HandleFunc(method+" /api/", func(w http.ResponseWriter, _ *http.Request) {
@@ -64,7 +61,7 @@ func noParameters(v url.Values) error {
 }
 
 // documentPath is where the interface is described.
-const documentPath = apiPath + "openapi.json"
+const documentPath = answer.Path + "openapi.json"
 
 // document tells what the interface is, by OpenAPI 3.1.
 func document(w http.ResponseWriter, r *http.Request) {

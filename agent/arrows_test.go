@@ -37,6 +37,7 @@ var arrows = map[string][]string{
 		"agent/loads",
 	},
 	"agent/access": {},
+	"agent/doors":  {"agent/access", "agent/answer", "agent/metrics"},
 	"agent/figure": {},
 	"agent/answer": {"agent/account", "agent/loads", "agent/warn"},
 	"agent/shown":  {"thermo/unit"},
@@ -59,7 +60,7 @@ var arrows = map[string][]string{
 	"agent/demo": {
 		"agent/view", "agent/warn", "agent/site", "agent/loads", "agent/design", "configs", "thermo/...",
 	},
-	"agent":               {"agent/access", "agent/answer", "agent/page", "agent/survey", "agent/proving", "agent/account", "agent/learning", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
+	"agent":               {"agent/doors", "agent/answer", "agent/page", "agent/survey", "agent/proving", "agent/account", "agent/learning", "agent/site", "agent/view", "agent/metrics", "agent/relay", "agent/warn", "agent/loads", "agent/design", "agent/design/...", "agent/parquet", "agent/working", "ingest", "ingest/...", "store", "thermo", "thermo/unit", "thermo/water", "thermo/unit/near"},
 	"agent/cmd/heatreeve": {"agent", "agent/answer", "agent/warn", "agent/working", "agent/survey", "agent/proving", "agent/site", "agent/view", "agent/demo", "agent/loads", "thermo", "thermo/named", "thermo/unit", "thermo/unit/near"},
 	"deploy":              {},
 }

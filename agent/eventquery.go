@@ -18,7 +18,7 @@ import (
 )
 
 // eventsPath is where what happened is told.
-const eventsPath = apiPath + "events"
+const eventsPath = answer.Path + "events"
 
 // eventKinds are those that there are.
 var eventKinds = []string{

@@ -13,7 +13,7 @@ import (
 )
 
 const (
-	explainPath = apiPath + "explain"
+	explainPath = answer.Path + "explain"
 	// explainTime bounds how long one explanation may take, and beatTime how long the beat
 	// may take to answer.
 	explainTime = time.Minute

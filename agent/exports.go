@@ -2,6 +2,7 @@ package agent
 
 import (
 	"context"
+	"heatreeve/agent/answer"
 	"net/http"
 	"slices"
 	"strconv"
@@ -9,7 +10,7 @@ import (
 )
 
 const (
-	exportPath = apiPath + "export"
+	exportPath = answer.Path + "export"
 	// untilHeader tells to where an export can go.
 	untilHeader = "Heatreeve-Until"
 	// noteHeader tells what is to know about all of an export, if anything.

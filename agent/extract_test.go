@@ -13,6 +13,7 @@ import (
 	"testing/iotest"
 	"time"
 
+	"heatreeve/agent/doors"
 	"heatreeve/store"
 )
 
@@ -131,7 +132,7 @@ func TestExtractOfWrongAnswers(t *testing.T) {
 		{"busy", func(w http.ResponseWriter) { http.Error(w, "another export", http.StatusServiceUnavailable) }, "another export"},
 	} {
 		server := httptest.NewServer(http.HandlerFunc(func(w http.ResponseWriter, _ *http.Request) {
-			w.Header().Set(runHeader, "R")
+			w.Header().Set(doors.RunHeader, "R")
 			w.Header().Set(untilHeader, "2026-10-24T00:00:00Z")
 			w.Header().Set("Trailer", rowsTrailer+", "+damageTrailer)
 			tt.answer(w)

@@ -213,3 +213,11 @@ func (s *savedAccounts) board(now int64) warn.Board {
 	r.Advance(now)
 	return r.Board(s.Watched)
 }
+
+// privately adds to what everybody may ask what the command line alone may do.
+func privately(public http.Handler, orders chan<- mark) http.Handler {
+	mux := http.NewServeMux()
+	mux.Handle("GET /", public)
+	mux.Handle("POST "+markPath, &marks{orders})
+	return mux
+}

@@ -13,7 +13,7 @@ import (
 )
 
 // loadsPath is where the present figures are.
-const loadsPath = apiPath + "loads"
+const loadsPath = answer.Path + "loads"
 
 // newPresent tells the present figures by pages.
 func newPresent(h *health, place *time.Location) http.Handler {

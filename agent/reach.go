@@ -20,6 +20,7 @@ import (
 	"time"
 
 	"heatreeve/agent/answer"
+	"heatreeve/agent/doors"
 	"heatreeve/store"
 )
 
@@ -76,7 +77,7 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 	timer := time.AfterFunc(headerTime, func() { cancel(silence) })
 	defer timer.Stop()
 	traced := httptrace.WithClientTrace(ctx, &httptrace.ClientTrace{Got1xxResponse: func(_ int, h textproto.MIMEHeader) error {
-		if h.Get(runHeader) == a.run {
+		if h.Get(doors.RunHeader) == a.run {
 			timer.Stop()
 		}
 		return nil
@@ -85,8 +86,8 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 	if err != nil {
 		return fmt.Errorf("%w at %q: %w", errUnreachable, a.hostPort, err)
 	}
-	req.Header.Set(runHeader, a.run)
-	req.Header.Set(keyHeader, a.key)
+	req.Header.Set(doors.RunHeader, a.run)
+	req.Header.Set(doors.KeyHeader, a.key)
 	if form != nil {
 		req.Header.Set("Content-Type", "application/x-www-form-urlencoded")
 	}
@@ -102,7 +103,7 @@ func (a address) send(ctx context.Context, method, path string, form io.Reader, 
 	}
 	defer resp.Body.Close()
 	timer.Stop()
-	if resp.Header.Get(runHeader) != a.run {
+	if resp.Header.Get(doors.RunHeader) != a.run {
 		return fmt.Errorf("%w at %s: something else listens there", errUnreachable, a.hostPort)
 	}
 	return take(resp)

@@ -8,7 +8,7 @@ import (
 )
 
 const (
-	reportPath = apiPath + "report"
+	reportPath = answer.Path + "report"
 	// reportTime bounds how long one report may take.
 	reportTime = 2 * time.Minute
 	// reportStall is how long who asked for a report may take nothing of it.

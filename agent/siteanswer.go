@@ -9,7 +9,7 @@ import (
 )
 
 // sitePath is where the plant is told.
-const sitePath = apiPath + "site"
+const sitePath = answer.Path + "site"
 
 // newPlace tells the plant, which is the same as long as the agent runs.
 func newPlace(s *site.Site, version string) http.Handler {

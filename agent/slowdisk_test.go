@@ -13,6 +13,7 @@ import (
 	mqtt "github.com/eclipse/paho.mqtt.golang"
 
 	"heatreeve/agent/demo"
+	"heatreeve/agent/doors"
 	"heatreeve/agent/view"
 	"heatreeve/ingest"
 	"heatreeve/store"
@@ -57,14 +58,14 @@ func TestSlowDisk(t *testing.T) {
 		}
 		return good(batch)
 	}
-	doors, err := openDoors("127.0.0.1:0")
+	open, err := doors.Open("127.0.0.1:0")
 	if err != nil {
 		t.Fatal(err)
 	}
 	ctx, cancel := context.WithCancel(t.Context())
 	ended := make(chan error, 1)
 	go func() {
-		ended <- a.work(ctx, books, doors, newAddress(doors.private.Addr()), newReports(history{db: books.store, zone: s.Zone, through: books.through.Load}))
+		ended <- a.work(ctx, books, open, newAddress(open.Private()), newReports(history{db: books.store, zone: s.Zone, through: books.through.Load}))
 	}()
 	awaitView(t, snapshots, "the subscription", func(v *view.Snapshot) bool { return v.Broker.Topics == 3 })
 

@@ -15,7 +15,7 @@ import (
 
 const (
 	// warningsPath is where the warnings are that stand.
-	warningsPath = apiPath + "warnings"
+	warningsPath = answer.Path + "warnings"
 	// warningsTime bounds how long one answer may take.
 	warningsTime = 10 * time.Second
 )

@@ -6,6 +6,9 @@ import (
 	"strconv"
 )
 
+// Path is where the interface for programs begins. All of it can only be read.
+const Path = "/api/v1/"
+
 // ProblemType is the media type of a [Problem].
 const ProblemType = "application/problem+json"
 

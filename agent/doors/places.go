@@ -1,4 +1,4 @@
-package agent
+package doors
 
 import (
 	"crypto/tls"

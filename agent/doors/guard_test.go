@@ -1,4 +1,4 @@
-package agent
+package doors
 
 import (
 	"net"
@@ -33,6 +33,11 @@ func webFile(t testing.TB, text string) string {
 		t.Fatal(err)
 	}
 	return path
+}
+
+func check(o Options) error {
+	_, err := NewGuard(o)
+	return err
 }
 
 // Beyond the loopback nobody is let in who is not asked, unless told so; what is wrong with a
@@ -85,7 +90,7 @@ func TestWhoMayLook(t *testing.T) {
 		if tt.config != "" {
 			o.WebConfig = webFile(t, tt.config)
 		}
-		err := CheckLooking(o)
+		err := check(o)
 		if (err == nil) != (tt.says == "") || err != nil && !strings.Contains(err.Error(), tt.says) {
 			t.Errorf("%+v: %v, want ...%q...", tt, err, tt.says)
 		}
@@ -93,7 +98,7 @@ func TestWhoMayLook(t *testing.T) {
 			t.Errorf("%v does not name the file", err)
 		}
 	}
-	if err := CheckLooking(Options{Listen: "127.0.0.1:0", WebConfig: a.Path("nowhere.yaml")}); err == nil || !strings.Contains(err.Error(), "nowhere.yaml") {
+	if err := check(Options{Listen: "127.0.0.1:0", WebConfig: a.Path("nowhere.yaml")}); err == nil || !strings.Contains(err.Error(), "nowhere.yaml") {
 		t.Errorf("no file: %v", err)
 	}
 }
@@ -102,30 +107,30 @@ func TestWhoMayLook(t *testing.T) {
 // without passwords by the names of the loopback alone.
 func TestFrontOfAll(t *testing.T) {
 	said := http.HandlerFunc(func(w http.ResponseWriter, _ *http.Request) { w.Write([]byte("answer")) })
-	asks := guard{terms: access.Terms{Password: true}}
+	asks := &Guard{terms: access.Terms{Password: true}}
 	for _, tt := range []struct {
-		guard        guard
+		guard        *Guard
 		method, host string
 		want         int
 	}{
-		{guard{}, "GET", "127.0.0.1:9617", 200},
-		{guard{}, "HEAD", "127.0.0.1", 200},
-		{guard{}, "GET", "localhost:9617", 200},
-		{guard{}, "GET", "LOCALHOST", 200},
-		{guard{}, "GET", "[::1]:9617", 200},
-		{guard{}, "GET", "[::1]", 200},
-		{guard{}, "GET", "heat.example:9617", 421}, // a name that somebody may lead here
-		{guard{}, "GET", "localhost.example", 421},
-		{guard{}, "GET", "127.0.0.1.example:80", 421},
-		{guard{}, "GET", "192.0.2.7:9617", 421},
-		{guard{}, "GET", "0.0.0.0:9617", 421},
-		{guard{}, "GET", "", 421},
-		{guard{openly: true}, "GET", "heat.example:9617", 200},
+		{&Guard{}, "GET", "127.0.0.1:9617", 200},
+		{&Guard{}, "HEAD", "127.0.0.1", 200},
+		{&Guard{}, "GET", "localhost:9617", 200},
+		{&Guard{}, "GET", "LOCALHOST", 200},
+		{&Guard{}, "GET", "[::1]:9617", 200},
+		{&Guard{}, "GET", "[::1]", 200},
+		{&Guard{}, "GET", "heat.example:9617", 421}, // a name that somebody may lead here
+		{&Guard{}, "GET", "localhost.example", 421},
+		{&Guard{}, "GET", "127.0.0.1.example:80", 421},
+		{&Guard{}, "GET", "192.0.2.7:9617", 421},
+		{&Guard{}, "GET", "0.0.0.0:9617", 421},
+		{&Guard{}, "GET", "", 421},
+		{&Guard{openly: true}, "GET", "heat.example:9617", 200},
 		{asks, "GET", "heat.example:9617", 200},
-		{guard{}, "POST", "127.0.0.1:9617", 405},
+		{&Guard{}, "POST", "127.0.0.1:9617", 405},
 		{asks, "PUT", "heat.example", 405},
-		{guard{openly: true}, "OPTIONS", "heat.example", 405},
-		{guard{}, "TRACE", "127.0.0.1:9617", 405},
+		{&Guard{openly: true}, "OPTIONS", "heat.example", 405},
+		{&Guard{}, "TRACE", "127.0.0.1:9617", 405},
 	} {
 		r := httptest.NewRequest(tt.method, "/", nil)
 		r.Host = tt.host
@@ -141,7 +146,7 @@ func TestFrontOfAll(t *testing.T) {
 		if w.Code < 400 {
 			continue
 		}
-		r.URL.Path, w = reportPath, httptest.NewRecorder()
+		r.URL.Path, w = answer.Path+"report", httptest.NewRecorder()
 		tt.guard.front(said).ServeHTTP(w, r)
 		if w.Code != tt.want || w.Header().Get("Content-Type") != answer.ProblemType {
 			t.Errorf("%s of the API at %q: %d %v", tt.method, tt.host, w.Code, w.Header())
@@ -164,7 +169,7 @@ func checkBounds(t *testing.T, h http.Header) {
 			t.Errorf("%s: %q, want %q", name, got, want)
 		}
 	}
-	if h.Get("Set-Cookie") != "" || h.Get(runHeader) != "" {
+	if h.Get("Set-Cookie") != "" || h.Get(RunHeader) != "" {
 		t.Errorf("%v", h)
 	}
 }
@@ -183,8 +188,8 @@ func TestWhereToLook(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		g := guard{terms: access.Terms{TLS: tt.tls}}
-		if got := g.url(at); got != tt.want {
+		g := &Guard{terms: access.Terms{TLS: tt.tls}}
+		if got := g.URL(at); got != tt.want {
 			t.Errorf("%s: %s, want %s", tt.at, got, tt.want)
 		}
 	}

@@ -1,4 +1,4 @@
-package agent
+package doors
 
 import (
 	"bufio"
@@ -55,7 +55,7 @@ func serving(t *testing.T, most int, h http.Handler) (*pipes, metrics.Doors) {
 	ended := make(chan error, 1)
 	log := newSparing(slog.DiscardHandler, time.Second)
 	places := newPlaces(l, most, m.Open.WithLabelValues("public"), m.Waited.WithLabelValues("public"))
-	go func() { ended <- (&guard{openly: true}).serve(ctx, places, h, log) }()
+	go func() { ended <- (&Guard{openly: true}).serve(ctx, places, h, log) }()
 	t.Cleanup(func() {
 		cancel()
 		if err := <-ended; err != nil {
@@ -249,4 +249,17 @@ level=WARN msg="http: TLS handshake error from 192.0.2.8:3: EOF" and_held_back=2
 			t.Errorf("%s", b.String())
 		}
 	})
+}
+
+// An address that is taken is told with what to do.
+func TestAddressIsTaken(t *testing.T) {
+	first, err := Open("127.0.0.1:0")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer first.Close()
+	at := first.Public().String()
+	if _, err := Open(at); err == nil || !strings.Contains(err.Error(), at) || !strings.Contains(err.Error(), "give another --listen") {
+		t.Errorf("%v", err)
+	}
 }

@@ -1,4 +1,4 @@
-package agent
+package doors
 
 import (
 	"context"
@@ -7,17 +7,21 @@ import (
 	"log/slog"
 	"net"
 	"net/http"
+	"syscall"
 	"time"
 
 	"heatreeve/agent/access"
 	"heatreeve/agent/metrics"
+
+	"golang.org/x/sync/errgroup"
 )
 
-// doors are where the agent listens: for everybody at the address it was given, and for its own
+// Doors are where the agent listens: for everybody at the address it was given, and for its own
 // command line at one that only the address file tells.
-type doors struct {
+type Doors struct {
 	public, private *places
-	metrics         metrics.Doors
+	// Metrics count who comes.
+	Metrics metrics.Doors
 }
 
 const (
@@ -28,10 +32,13 @@ const (
 	mostPrivate = 32
 )
 
-// openDoors opens both.
-func openDoors(public string) (*doors, error) {
+// Open opens both.
+func Open(public string) (*Doors, error) {
 	all, err := net.Listen("tcp", public)
-	if err != nil {
+	switch {
+	case errors.Is(err, syscall.EADDRINUSE):
+		return nil, fmt.Errorf("listen on %q: %w; stop what listens there, perhaps another agent, or give another --listen", public, err)
+	case err != nil:
 		return nil, fmt.Errorf("listen on %q: %w", public, err)
 	}
 	own, err := net.Listen("tcp", "127.0.0.1:0")
@@ -40,15 +47,21 @@ func openDoors(public string) (*doors, error) {
 		return nil, fmt.Errorf("listen for the command line: %w", err)
 	}
 	m := metrics.NewDoors()
-	return &doors{
+	return &Doors{
 		public:  newPlaces(all, mostPublic, m.Open.WithLabelValues("public"), m.Waited.WithLabelValues("public")),
 		private: newPlaces(own, mostPrivate, m.Open.WithLabelValues("private"), m.Waited.WithLabelValues("private")),
-		metrics: m,
+		Metrics: m,
 	}, nil
 }
 
-// close closes what is still open.
-func (d *doors) close() {
+// Public is where everybody may look.
+func (d *Doors) Public() net.Addr { return d.public.Addr() }
+
+// Private is where the command line asks.
+func (d *Doors) Private() net.Addr { return d.private.Addr() }
+
+// Close closes what is still open.
+func (d *Doors) Close() {
 	d.public.Close()
 	d.private.Close()
 }
@@ -57,8 +70,18 @@ func (d *doors) close() {
 // look.
 const sparingEvery = 10 * time.Second
 
-// serve answers everybody on l until ctx ends, as far as the guard lets them.
-func (g *guard) serve(ctx context.Context, l *places, h http.Handler, log slog.Handler) error {
+// Serve answers everybody with public, as far as the guard lets them, and the command line with
+// private, until ctx ends.
+func (d *Doors) Serve(ctx context.Context, g *Guard, public, private http.Handler, log *slog.Logger) error {
+	spared := newSparing(log.Handler(), sparingEvery)
+	both, ctx := errgroup.WithContext(ctx)
+	both.Go(func() error { return g.serve(ctx, d.public, public, spared) })
+	both.Go(func() error { return servePrivate(ctx, d.private, private, spared) })
+	return both.Wait()
+}
+
+// serve answers everybody on l until ctx ends.
+func (g *Guard) serve(ctx context.Context, l *places, h http.Handler, log slog.Handler) error {
 	server := newServer(g.front(access.Door(g.file, g.terms, h, turnAway, slog.New(log))), log)
 	return until(ctx, server, l, func() error {
 		if !g.terms.TLS {

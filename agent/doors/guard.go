@@ -1,4 +1,6 @@
-package agent
+// Package doors is where the agent listens, for everybody and for its own command line, and who
+// may look there.
+package doors
 
 import (
 	"fmt"
@@ -12,23 +14,33 @@ import (
 	"heatreeve/agent/answer"
 )
 
-// guard is who may look at what the agent shows, and what they may do.
-type guard struct {
+// Options say where everybody may look, and who that is.
+type Options struct {
+	Listen string // "host:port"
+	// WebConfig is a file of the Prometheus exporters' format that says which certificates and
+	// passwords who looks must have; "" for none.
+	WebConfig string
+	// Openly lets others than this machine look without either, by any name of it.
+	Openly bool
+}
+
+// Guard is who may look at what the agent shows, and what they may do.
+type Guard struct {
 	file   string // web configuration; "" for none
 	terms  access.Terms
 	openly bool
 }
 
-// newGuard says what is wrong with the options of who may look.
-func newGuard(o Options) (guard, error) {
-	g := guard{file: o.WebConfig, openly: o.Openly}
+// NewGuard says what is wrong with the options, before anything is started.
+func NewGuard(o Options) (*Guard, error) {
+	g := &Guard{file: o.WebConfig, openly: o.Openly}
 	host, _, err := net.SplitHostPort(o.Listen)
 	if err != nil {
-		return g, fmt.Errorf("--listen %q: %s; write host:port", o.Listen, strings.TrimPrefix(err.Error(), "address "+o.Listen+": "))
+		return nil, fmt.Errorf("--listen %q: %s; write host:port", o.Listen, strings.TrimPrefix(err.Error(), "address "+o.Listen+": "))
 	}
 	if g.file != "" {
 		if g.terms, err = access.Check(g.file); err != nil {
-			return g, err
+			return nil, err
 		}
 	}
 	return g, g.covers(host, o.Listen)
@@ -36,19 +48,12 @@ func newGuard(o Options) (guard, error) {
 
 // covers is an error where others than this machine could look at a host, and nobody would be
 // asked.
-func (g *guard) covers(host, listen string) error {
+func (g *Guard) covers(host, listen string) error {
 	if g.terms.Authenticates() || g.openly || within(host) {
 		return nil
 	}
 	return fmt.Errorf("--listen %q: others than this machine could look there, and nobody would be asked who they are; "+
 		"give --web-config FILE with basic_auth_users or the certificates of clients, listen on 127.0.0.1, or let everybody look with --openly", listen)
-}
-
-// CheckLooking says what is wrong with those of the options that tell who may look, before
-// anything is started.
-func CheckLooking(o Options) error {
-	_, err := newGuard(o)
-	return err
 }
 
 // within tells whether a host is this machine's loopback.
@@ -60,8 +65,9 @@ func within(host string) bool {
 	return err == nil && at.IsLoopback()
 }
 
-// opened looks once more at where the agent listens in truth, now that names are resolved.
-func (g *guard) opened(at net.Addr, log *slog.Logger) error {
+// Admit looks once more at where the agent listens in truth, now that names are resolved.
+func (g *Guard) Admit(d *Doors, log *slog.Logger) error {
+	at := d.Public()
 	host, _, err := net.SplitHostPort(at.String())
 	if err != nil {
 		return err
@@ -72,8 +78,8 @@ func (g *guard) opened(at net.Addr, log *slog.Logger) error {
 	return g.covers(host, at.String())
 }
 
-// url is where a reader finds what listens at an address.
-func (g *guard) url(at net.Addr) string {
+// URL is where a reader finds what listens at an address.
+func (g *Guard) URL(at net.Addr) string {
 	scheme, host := "http", at.String()
 	if g.terms.TLS {
 		scheme = "https"
@@ -89,7 +95,7 @@ func (g *guard) url(at net.Addr) string {
 const policy = "default-src 'none'; script-src 'self'; style-src 'self'; img-src 'self'; connect-src 'self'; form-action 'self'; base-uri 'none'; frame-ancestors 'none'"
 
 // front stands before everything that everybody may ask, passwords included.
-func (g *guard) front(h http.Handler) http.Handler {
+func (g *Guard) front(h http.Handler) http.Handler {
 	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
 		for name, value := range map[string]string{
 			"Content-Security-Policy":      policy,
@@ -117,7 +123,7 @@ func (g *guard) front(h http.Handler) http.Handler {
 
 // turnAway says why there is no answer, to a program as a problem.
 func turnAway(w http.ResponseWriter, r *http.Request, status int, why string) {
-	if strings.HasPrefix(r.URL.Path, apiPath) {
+	if strings.HasPrefix(r.URL.Path, answer.Path) {
 		answer.Refuse(w, status, why)
 		return
 	}
