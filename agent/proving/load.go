@@ -8,6 +8,7 @@ import (
 
 	"heatreeve/agent/loads"
 	"heatreeve/agent/site"
+	"heatreeve/ingest/quality"
 	"heatreeve/thermo/unit"
 )
 
@@ -34,6 +35,7 @@ func (t *Trial) tellLoad(i int) Load {
 	case f.Idle, j.pump() == off:
 		j.rest()
 	default:
+		j.mark()
 		j.sides()
 		if j.flowUnit() || !j.register() {
 			j.pipe()
@@ -52,6 +54,15 @@ type judge struct {
 
 func (j judge) add(level Level, format string, args ...any) {
 	j.told.Findings = append(j.told.Findings, Finding{level, fmt.Sprintf(format, args...)})
+}
+
+// mark tells by which tag a duty is uncertain, and why; the order of temperatures is judged by
+// sides.
+func (j judge) mark() {
+	f := &j.told.Figure
+	if f.Quality() == quality.Uncertain && f.Mark != quality.WrongOrder {
+		j.add(Note, "the duty is uncertain: %s is %v", f.By, f.Mark)
+	}
 }
 
 // sides looks whether the stream gives heat where it should take it. A warm stream that

@@ -192,6 +192,12 @@ func TestMistakes(t *testing.T) {
 			}
 			return true
 		}, want: note("TT-1", "61 readings uncertain by their source: out-of-specification")},
+		{name: "doubted duty", change: func(tag string, h *proving.Heard) bool {
+			if tag == "TT-1" {
+				h.Mark = quality.OffSpec
+			}
+			return true
+		}, want: note("hall", "the duty is uncertain: TT-1 is out-of-specification")},
 	} {
 		text, p := file, sound
 		if tt.edit != nil {
