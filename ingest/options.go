@@ -1,10 +1,12 @@
 package ingest
 
 import (
+	"bytes"
 	"crypto/tls"
 	"errors"
 	"fmt"
 	"log/slog"
+	"os"
 	"time"
 
 	"heatreeve/ingest/sparkplug"
@@ -162,9 +164,19 @@ func (o Options) tlsConfig(host string) (*tls.Config, error) {
 		return nil, errors.New("client certificate: its file and its key file must both be given, or neither")
 	}
 	pair, err := tls.LoadX509KeyPair(o.CertFile, o.KeyFile)
-	if err != nil {
+	switch {
+	case err != nil && encrypted(o.KeyFile):
+		return nil, fmt.Errorf("client certificate %q: its key %q is encrypted, and no password of a key is known here; write it without one, as openssl pkey -in OLD -out NEW does, readable by the agent alone", o.CertFile, o.KeyFile)
+	case err != nil:
 		return nil, fmt.Errorf("client certificate %q with key %q: %w", o.CertFile, o.KeyFile, err)
 	}
 	c.Certificates = []tls.Certificate{pair}
 	return c, nil
+}
+
+// encrypted tells whether a file holds a key in PEM form that only a password opens (RFC 7468,
+// section 11; RFC 1421, section 4.6.1.1).
+func encrypted(file string) bool {
+	text, err := os.ReadFile(file)
+	return err == nil && (bytes.Contains(text, []byte("BEGIN ENCRYPTED PRIVATE KEY")) || bytes.Contains(text, []byte("Proc-Type: 4,ENCRYPTED")))
 }

@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"crypto/tls"
+	"encoding/pem"
 	"heatreeve/ingest/authority"
 	"os"
 	"strings"
@@ -149,4 +150,17 @@ func TestClientCertificateIsReplaced(t *testing.T) {
 		}
 	}
 	ready(t, s)
+}
+
+// A key that wants a password is told as such, with the way out.
+func TestEncryptedKey(t *testing.T) {
+	a := plantAuthority(t)
+	secret := pem.EncodeToMemory(&pem.Block{Type: "ENCRYPTED PRIVATE KEY", Bytes: []byte("of which nothing can be read")})
+	if err := os.WriteFile(a.Path("client.key"), secret, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	o := Options{URL: "mqtts://broker.plant", CAFile: a.Path("ca.pem"), CertFile: a.Path("client.pem"), KeyFile: a.Path("client.key")}
+	if _, err := o.tlsConfig("broker.plant"); err == nil || !strings.Contains(err.Error(), a.Path("client.key")) || !strings.Contains(err.Error(), "is encrypted") || !strings.Contains(err.Error(), "openssl pkey") {
+		t.Errorf("%v", err)
+	}
 }

@@ -139,11 +139,14 @@ func (o object) setVersion(key string, to *string) {
 	if !ok {
 		return
 	}
-	if s := v.node.Value; s == "1.2" || s == "1.3" {
+	switch s := v.node.Value; s {
+	case "1.2", "1.3":
 		*to = s
-		return
+	case "":
+		v.fault("want the least version of TLS, 1.2 or 1.3, found %s", v.kind())
+	default:
+		v.fault("want the least version of TLS, 1.2 or 1.3, found %s", clip(s))
 	}
-	v.fault("want the least version of TLS, 1.2 or 1.3, found %s", v.kind())
 }
 
 // setCount reads a whole number.

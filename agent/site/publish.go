@@ -41,7 +41,8 @@ func (r *reader) publish(o object) {
 	}
 }
 
-// checkPublished sees to it that results are not read as readings.
+// checkPublished sees to it that results are not read as readings, and that none stands where
+// the agent tells that it is there.
 func (r *reader) checkPublished(at value) {
 	p := r.site.Publish
 	for _, t := range r.site.Tags {
@@ -49,5 +50,8 @@ func (r *reader) checkPublished(at value) {
 			at.fault("tag %q reads %q, which is below it; what the agent publishes is no reading", t.Name, clip(t.Topic))
 			return
 		}
+	}
+	if own := r.site.AllBrokers()[p.Broker].Availability; strings.HasPrefix(own, p.Topic+"/") {
+		at.fault("the availability of the agent, %q, is below it, where a load of that name would be", clip(own))
 	}
 }
