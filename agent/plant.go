@@ -112,6 +112,7 @@ func signalsOf(s *site.Site) []ingest.Tag {
 			Name: t.Name, Topic: t.Topic, Value: t.Value, Time: t.Time, TimeFormat: t.TimeFormat,
 			UnitAt: t.UnitAt, Unit: t.Numbers, Quality: qualityOf(t.Quality), Samples: (*ingest.Samples)(t.Samples),
 			Scale: t.Scale, Offset: t.Offset, Min: t.Min, Max: t.Max, QoS: t.QoS,
+			Holds: t.OnChange || t.Counter != nil && t.Counter.Each,
 		}
 		if t.Signal != nil {
 			rawSignal(t, &tag)

@@ -85,7 +85,7 @@ func (p *played) at(n int, topic string, payload []byte) {
 			p.t.Fatalf("no tag reads %q", topic)
 		}
 		for _, o := range out {
-			if o.Refusal != nil {
+			if o.Refusal != nil && !o.Void {
 				p.t.Fatal(o.Refusal)
 			}
 			beat.Readings = append(beat.Readings, loads.Reading{Tag: o.Tag, At: o.At, Value: o.Value, Mark: o.Mark})
@@ -169,5 +169,19 @@ func TestMetricsEndAtTheStart(t *testing.T) {
 	}
 	if missing := float64(got.Missing) / 1e9; missing < 3499 || missing > 3501 {
 		t.Errorf("%v s missing; want the 3500 since", missing)
+	}
+}
+
+// A metric that reports on change holds on while nothing comes, but not beyond a value that is
+// refused: from there the load is blind until the next good one.
+func TestRefusedValueEndsTheDuty(t *testing.T) {
+	p := playOn(t, pluggedSite)
+	ms := func(n int) int64 { return clock.UnixMilli() + int64(n)*1000 }
+	p.at(0, loop.Topic(sparkplug.DBirth), payload(0, ms(0), true, 80, 60, 2))
+	p.at(60, loop.Topic(sparkplug.DData), payload(1, ms(60), false, math.NaN()))
+	p.at(120, loop.Topic(sparkplug.DData), payload(2, ms(120), false, 80))
+	p.at(180, "", nil)
+	if got := p.totals().Measured / sec; got < 118 || got > 120 {
+		t.Errorf("%d s measured of three minutes, of which one is without the inlet; want about 119", got)
 	}
 }

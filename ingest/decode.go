@@ -26,7 +26,17 @@ type Outcome struct {
 	// a refusal, or with that for [Retained], where it is the old value.
 	Reading
 	Refusal *Refusal // nil: accepted
+	// Void is set beside a refusal by which the value before ends: Reading is then a bad one,
+	// [quality.Refused], that is kept as an accepted one is.
+	Void bool
 }
+
+// kept tells whether the reading is passed on.
+func (o *Outcome) kept() bool { return o.Refusal == nil || o.Void }
+
+// voids are the refusals of a value that is not the one before, whatever else it is. A message
+// that has none may have left out what did not change.
+var voids = [reasons]bool{WrongType: true, NotANumber: true, NotFinite: true, UnknownQuality: true, UnitMismatch: true, OutOfRange: true}
 
 // Decoder turns payloads into readings. It has no clock and keeps nothing from
 // one message to the next but its working memory and what Sparkplug births have told,
@@ -168,7 +178,11 @@ func (d *Decoder) Decode(topic string, payload []byte, arrival int64, retained b
 	for _, w := range t.tags {
 		switch tag := &d.tags[w.tag]; {
 		case tag.concerns(w, whole):
-			out = append(out, tag.refused(Reading{Tag: w.tag}, whole, &m))
+			o := tag.refused(Reading{Tag: w.tag}, whole, &m)
+			if w.time < 0 { // another stamp cannot be read
+				d.void(&o, w, nil, &m)
+			}
+			out = append(out, o)
 		case w.list != nil:
 			out = d.samples(out, w, &m)
 		default:
@@ -182,9 +196,24 @@ func (d *Decoder) Decode(topic string, payload []byte, arrival int64, retained b
 func (d *Decoder) outcome(w *wanted, at []found, m *arrived) Outcome {
 	r := Reading{Tag: w.tag}
 	if f := d.read(&r, w, at, m); f != nil {
-		return d.tags[w.tag].refused(r, f, m)
+		o := d.tags[w.tag].refused(r, f, m)
+		d.void(&o, w, at, m)
+		return o
 	}
 	return Outcome{Reading: r}
+}
+
+// void has a refusal end the value before where the tag holds that until it hears of another,
+// and where it is known when the new one came.
+func (d *Decoder) void(o *Outcome, w *wanted, at []found, m *arrived) {
+	tag := &d.tags[w.tag]
+	if !tag.Holds || !voids[o.Refusal.Reason] {
+		return
+	}
+	r := Reading{Tag: w.tag, At: o.At, Stamped: o.Stamped, Value: math.NaN(), Mark: quality.Refused}
+	if d.stamp(&r, tag, w, at, m) == nil && d.timely(r.At, m.arrival) == nil {
+		o.Reading, o.Void = r, true
+	}
 }
 
 func (t *Tag) refused(r Reading, f *fault, m *arrived) Outcome {

@@ -103,7 +103,7 @@ func (b *inbox) offer(m *message, outcomes []Outcome) (ok, wait bool) {
 		m = b.await(m, n)
 	}
 	for i := range outcomes {
-		if outcomes[i].Refusal == nil {
+		if outcomes[i].kept() {
 			b.readings = append(b.readings, Received{Reading: outcomes[i].Reading, from: m})
 		}
 	}
@@ -150,7 +150,7 @@ func (b *inbox) tellAt(n int) {
 func accepted(outcomes []Outcome) int {
 	n := 0
 	for i := range outcomes {
-		if outcomes[i].Refusal == nil {
+		if outcomes[i].kept() {
 			n++
 		}
 	}

@@ -20,7 +20,7 @@ func (d debts) note(tags []Tag, out []Outcome) {
 	for i := range out {
 		r := out[i].Reading
 		tag := &tags[r.Tag]
-		if out[i].Refusal != nil || tag.Metric == nil {
+		if !out[i].kept() || tag.Metric == nil {
 			continue
 		}
 		if before, ok := d[r.Tag]; ok && tag.Liveness == nil && before.At < r.At {

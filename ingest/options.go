@@ -76,8 +76,9 @@ type Options struct {
 	PingTimeout    time.Duration // wait for the probe's answer; 0: DefaultPingTimeout
 	ConnectTimeout time.Duration // for an attempt, and for any write; 0: DefaultConnectTimeout
 
-	// Reached is what [Session.Reached] returns, of one slot; several sessions may
-	// share it. nil: one of its own.
+	// Reached is told when so many messages wait as [Session.TellAt] was given, or more. It has
+	// one slot, in which its one receiver finds the last time only, and several sessions may
+	// share it. nil: nobody is told.
 	Reached chan struct{}
 
 	Log *slog.Logger     // nil: silent

@@ -2,6 +2,7 @@ package ingest
 
 import (
 	"fmt"
+	"math"
 	"strings"
 	"sync"
 	"time"
@@ -136,6 +137,9 @@ func (p *plug) outcome(r *sparkplug.Reading, payload []byte, arrival int64) Outc
 	}
 	text, cut := excerpt(payload)
 	o.Refusal = &Refusal{Tag: tag.Name, Reason: f.reason, Payload: text, Cut: cut, At: arrival, Detail: f.detail}
+	if tag.Holds && voids[f.reason] && r.At != 0 {
+		o.Void, o.Value, o.Mark = true, math.NaN(), quality.Refused
+	}
 	return o
 }
 

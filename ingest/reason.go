@@ -61,12 +61,3 @@ func Reasons() []Reason {
 
 // Counts holds one count a [Reason], indexed by it.
 type Counts [reasons]uint64
-
-// Total returns the sum over all reasons.
-func (c Counts) Total() uint64 {
-	var sum uint64
-	for _, n := range c {
-		sum += n
-	}
-	return sum
-}

@@ -150,12 +150,14 @@ func (d *Decoder) samples(out []Outcome, w *wanted, m *arrived) []Outcome {
 		switch {
 		case f == nil:
 			out = append(out, Outcome{Reading: r})
+			continue
 		case told[f.reason] != nil:
 			out = append(out, Outcome{Reading: r, Refusal: told[f.reason]})
 		default:
 			out = append(out, tag.refused(r, f, m))
 			told[f.reason] = out[len(out)-1].Refusal
 		}
+		d.void(&out[len(out)-1], w, d.elements[l.from+i*l.slots:][:l.slots], m)
 	}
 	return out
 }

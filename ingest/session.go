@@ -268,11 +268,7 @@ func (s *Session) Ack(batch []Received) { s.inbox.stored(batch) }
 // otherwise), so that a caller that finds many here should store early.
 func (s *Session) Waiting() int { return s.inbox.waiting() }
 
-// Reached is told when so many messages wait as [Session.TellAt] was given, or more.
-// The channel is for one receiver, who finds the last time only.
-func (s *Session) Reached() <-chan struct{} { return s.inbox.reached }
-
-// TellAt says at how many waiting messages [Session.Reached] is told; 0: at none.
+// TellAt says at how many waiting messages [Options.Reached] is told; 0: at none.
 func (s *Session) TellAt(n int) { s.inbox.tellAt(n) }
 
 // Stats returns the counts so far.

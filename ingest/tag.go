@@ -53,6 +53,11 @@ type Tag struct {
 	// the unit. Not beside a Signal.
 	Truth bool
 
+	// Holds is set where a value counts until another comes: where the source is silent while
+	// nothing changes, or each message adds to those before. A value that is refused then leaves
+	// a bad one.
+	Holds bool
+
 	Min, Max float64 // SI, instrument range, both ends allowed; ±Inf: no limit
 	QoS      byte    // 0 or 1; 1 is needed for delivery after a crash
 	// Liveness is set where the messages tell not a value but whether their source is

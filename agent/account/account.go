@@ -118,9 +118,6 @@ func (p *Period) Mean() (duty, uncertainty float64) {
 	return p.Served / s, p.Uncertainty.Standard() / s
 }
 
-// Whole tells whether all of the period is accounted for.
-func (p *Period) Whole() bool { return p.From == p.Start && p.To == p.End }
-
 // Extreme is a figure of the duty, and the bounds of the record that holds it.
 type Extreme struct {
 	Duty       float64 // W

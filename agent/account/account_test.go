@@ -81,7 +81,7 @@ func TestRampOverALongDay(t *testing.T) {
 	mean, u := p.Mean()
 	near(t, "mean duty", mean, d*(n-1)/2, 1e-15)
 	near(t, "its uncertainty", u, 0.01*d*(n-1)/2, 1e-15)
-	if p.Measured != 25*hour || p.Missing != 0 || p.Taken != 0 || p.Coverage() != 1 || !p.Whole() {
+	if p.Measured != 25*hour || p.Missing != 0 || p.Taken != 0 || p.Coverage() != 1 || !whole(&p) {
 		t.Errorf("a day all measured: %+v", p)
 	}
 	if p.Lowest != (Extreme{0, from, from + minute}) || p.Highest != (Extreme{d * (n - 1), from + (n-1)*minute, from + n*minute}) {
@@ -134,7 +134,7 @@ func TestPeriodsInPart(t *testing.T) {
 	from, to := at(t, "2026-06-01T10:20+05:30"), at(t, "2026-06-03T00:00+05:30")
 	through := at(t, "2026-06-02T09:07+05:30") + 59*int64(time.Second)
 	p := collect(t, Plan{From: from, To: to, Through: through, By: Day, Zone: zone, Demand: time.Hour}, []Record{record(from, 1, 0, 60)})
-	if len(p) != 2 || p[0].From != from || p[0].Whole() || p[1].To != at(t, "2026-06-02T09:07+05:30") || p[1].End != to || p[1].Whole() {
+	if len(p) != 2 || p[0].From != from || whole(&p[0]) || p[1].To != at(t, "2026-06-02T09:07+05:30") || p[1].End != to || whole(&p[1]) {
 		t.Fatalf("periods %+v", p)
 	}
 	if p[0].Demand.Windows != 13 || p[1].Demand.Windows != 9 || p[0].Demand.PeakEnd != 0 || p[0].Demand.Full != 0 {
@@ -216,3 +216,6 @@ func TestPlanCheck(t *testing.T) {
 		wantError(t, tt.want, p.Check(), tt.want)
 	}
 }
+
+// whole tells whether all of a period is accounted for.
+func whole(p *Period) bool { return p.From == p.Start && p.To == p.End }

@@ -19,19 +19,10 @@ type TableOptions struct {
 
 const usualWidth = 80
 
-// Table draws the loads of a snapshot, one a line, and below them why a load is
+// tableLines draws the loads of a snapshot, one a line, and below them why a load is
 // blind or what to bear in mind with its duty, how the broker does, and the notice. No line is wider than the
 // width. Uncertainties are expanded, k = 2, with two digits (JCGM 100:2008,
 // 7.2.6), and the figures go as far.
-func Table(w io.Writer, s *view.Snapshot, o TableOptions) error {
-	return write(w, tableLines(s, o))
-}
-
-func write(w io.Writer, lines []string) error {
-	_, err := io.WriteString(w, strings.Join(lines, "\n")+"\n")
-	return err
-}
-
 func tableLines(s *view.Snapshot, o TableOptions) []string {
 	if o.Width <= 0 {
 		o.Width = usualWidth
@@ -83,4 +74,9 @@ func heading(s *view.Snapshot, zone *time.Location) string {
 		return s.Site + ", waiting for the first readings"
 	}
 	return s.Site + ", " + time.Unix(0, s.At).In(zone).Format("Mon 2 Jan 2006 15:04:05 MST")
+}
+
+func write(w io.Writer, lines []string) error {
+	_, err := io.WriteString(w, strings.Join(lines, "\n")+"\n")
+	return err
 }

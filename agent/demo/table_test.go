@@ -47,7 +47,7 @@ func picture() *view.Snapshot {
 func draw(t *testing.T, s *view.Snapshot, o TableOptions) string {
 	t.Helper()
 	var b bytes.Buffer
-	if err := Table(&b, s, o); err != nil {
+	if err := write(&b, tableLines(s, o)); err != nil {
 		t.Fatal(err)
 	}
 	return b.String()

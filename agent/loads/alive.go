@@ -57,7 +57,7 @@ func (e *Engine) unusable(tag int, s standing) (Fault, string) {
 	alive := &e.cfg.Tags[e.cfg.Tags[tag].Alive]
 	switch s {
 	case unheard:
-		return NoReading, fmt.Sprintf("tag %q has sent nothing yet, and only it tells whether %q still holds", alive.Name, name)
+		return NoReading, fmt.Sprintf("tag %q has no reading yet, and only it tells whether %q still holds", alive.Name, name)
 	case gone:
 		return Stale, fmt.Sprintf("tag %q says that the source of %q has gone", alive.Name, name)
 	case silent:

@@ -105,7 +105,7 @@ func TestOnChangeGoesWithItsSource(t *testing.T) {
 func TestAReadingIsASignOfLife(t *testing.T) {
 	e := engine(t, exceptional(lifespan*second))
 	e.Advance(Beat{at(0, 2, 350, 330), through(20)}, nil)
-	checkFigure(t, e, NoReading, `tag "PLC" has sent nothing yet, and only it tells whether "FT" still holds`)
+	checkFigure(t, e, NoReading, `tag "PLC" has no reading yet, and only it tells whether "FT" still holds`)
 	e.Advance(Beat{beating(20, 20), through(21)}, nil)
 	checkFigure(t, e, NoFault, "")
 	e.Advance(Beat{append(at(1000, 2, 350, 330), beating(1025, 1025)...), through(1050)}, nil)

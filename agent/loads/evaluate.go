@@ -110,7 +110,7 @@ func (e *Engine) read(f *Figure, src Source, value *float64, d *doubt) bool {
 	tag, h := &e.cfg.Tags[src.Tag], &e.tags[src.Tag].Held
 	switch {
 	case !h.Has:
-		*f = f.fail(NoReading, fmt.Sprintf("tag %q has sent nothing yet", tag.Name))
+		*f = f.fail(NoReading, fmt.Sprintf("tag %q has no reading yet", tag.Name))
 		return false
 	case tag.OnChange:
 		if s := e.standing(src.Tag, f.At); s != holds {

@@ -13,7 +13,7 @@ type Fault uint8
 
 const (
 	NoFault    Fault = iota
-	NoReading        // a tag has sent nothing yet
+	NoReading        // a tag has no reading yet
 	Stale            // a tag's last reading is older than its maximum age
 	Reverse          // flow is below zero by more than the idle threshold
 	Saturation       // a liquid near boiling, or a gas near its dew point

@@ -31,7 +31,7 @@ func (t *tagTrial) hear(h Heard) {
 	if t.live+t.kept == 0 || h.At >= t.newest.At {
 		t.newest = h
 	}
-	if h.Mark != quality.None {
+	if h.Mark != quality.None && h.Mark != quality.Refused { // which is told among the refusals
 		if t.marks == nil {
 			t.marks = map[quality.Mark]int{}
 		}

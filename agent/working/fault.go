@@ -24,7 +24,7 @@ func (p *page) faulty() {
 func (p *page) missing(in *loads.Input) string {
 	tag := &p.Site.Tags[in.Source.Tag]
 	if in.Held.At == 0 {
-		return fmt.Sprintf("%s: tag %q has sent nothing", in.Name, tag.Name)
+		return fmt.Sprintf("%s: tag %q has no reading yet", in.Name, tag.Name)
 	}
 	what := "had no number"
 	if !math.IsNaN(in.Held.Value) {

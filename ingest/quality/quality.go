@@ -75,6 +75,7 @@ const (
 	Offline       Mark = Mark(Bad)<<reasonBits | 5 // the source has gone
 	StaleAtSource Mark = Mark(Bad)<<reasonBits | 6 // the source says that its value is out of date
 	OutOfService  Mark = Mark(Bad)<<reasonBits | 7 // the source is not in use
+	Refused       Mark = Mark(Bad)<<reasonBits | 8 // the source has a new value, which was refused, so that the one before holds no longer
 )
 
 // Quality is that of the mark.
@@ -88,7 +89,7 @@ var words = map[Mark]string{
 	Implausible: "implausible", TooFast: "too-fast", Stuck: "stuck", Spike: "spike",
 	Disagrees: "disagrees", NotZero: "not-zero", WrongOrder: "wrong-order",
 	Rejected: "rejected-by-source", Failed: "failure", FunctionCheck: "function-check", NoValue: "no-value",
-	Offline: "offline", StaleAtSource: "stale-at-source", OutOfService: "out-of-service",
+	Offline: "offline", StaleAtSource: "stale-at-source", OutOfService: "out-of-service", Refused: "refused-value",
 }
 
 // Marks lists all that there are but [None], by their numbers.

@@ -11,7 +11,7 @@ func TestMarksKeepTheirNumbers(t *testing.T) {
 		None: 0, Maintenance: 1,
 		Doubted: 65, LastUsable: 66, Substitute: 67, OffSpec: 68, BelowSpan: 69, AboveSpan: 70, Inaccurate: 71, Limited: 72,
 		Implausible: 80, TooFast: 81, Stuck: 82, Spike: 83, Disagrees: 96, NotZero: 97, WrongOrder: 98,
-		Rejected: 129, Failed: 130, FunctionCheck: 131, NoValue: 132, Offline: 133, StaleAtSource: 134, OutOfService: 135,
+		Rejected: 129, Failed: 130, FunctionCheck: 131, NoValue: 132, Offline: 133, StaleAtSource: 134, OutOfService: 135, Refused: 136,
 	} {
 		if uint8(m) != want {
 			t.Errorf("%v is number %d, want %d", m, uint8(m), want)

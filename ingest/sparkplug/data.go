@@ -74,11 +74,16 @@ func (s *Space) reading(src *source, id int, d Datatype, birth bool) Reading {
 	if m.Transient {
 		r.Wrong = Transient
 	}
-	if r.Wrong != Right {
+	at, when := s.instant(&r)
+	switch {
+	case r.Wrong == Right:
+		r.At, r.Wrong = at, when
+	case when == Right:
+		r.At = at
+	default:
 		return r
 	}
-	r.At, r.Wrong = s.instant(&r)
-	if r.Wrong == Right && !r.Historical && !w.live {
+	if when == Right && !r.Historical && !w.live {
 		r.At = max(r.At, w.newest+1)
 	}
 	return r

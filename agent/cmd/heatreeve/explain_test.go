@@ -304,7 +304,7 @@ func TestExplainWithoutADuty(t *testing.T) {
 			`flow: tag "FT-201" last said `, " m3/h at 2026-12-01 09:49:50 +00:00; it holds for 30 s, and is missing since 2026-12-01 09:50:20 +00:00",
 			"s old, good, not used: stale", "T1' inlet: ", "hot-water has no duty: stale. It is blind."}},
 		{"chilled-glycol", at(900), []string{`outlet: tag "TT-302" last said`, "is missing since 2026-12-01 09:10:20 +00:00"}},
-		{"dryer-air", "", []string{`no reading: tag "TT-402" has sent nothing yet`, `outlet: tag "TT-402" has sent nothing`}},
+		{"dryer-air", "", []string{`no reading: tag "TT-402" has no reading yet`, `outlet: tag "TT-402" has no reading yet`}},
 	} {
 		args := []string{tt.load, "--data", p.data}
 		if tt.at != "" {
