@@ -50,6 +50,13 @@ func (h *heard) eventually(t *testing.T, want ...string) {
 	eventually(t, fmt.Sprintf("%q", want), func() bool { return slices.Equal(h.all(), want) })
 }
 
+// acknowledged waits until the broker has told that it has all that was published; what it has not
+// is sent again on the next connection.
+func acknowledged(t *testing.T, s *Session) {
+	t.Helper()
+	eventually(t, "the acknowledgements", func() bool { o := s.Stats().Outbox; return o.Published > 0 && o.Waiting == 0 })
+}
+
 // kept is what the broker keeps of a topic.
 func kept(server *mochi.Server, topic string) string {
 	for _, p := range server.Topics.Messages(topic) {
@@ -79,6 +86,7 @@ func TestPresenceOfADeadConnection(t *testing.T) {
 	s, _, _ := start(t, []Tag{number("a")}, Options{URL: url, Presence: Words(presence, "online", "offline")})
 	ready(t, s)
 	h.eventually(t, presence+" online")
+	acknowledged(t, s)
 	s.link.Load().end(errLeft) // without a goodbye
 	h.eventually(t, presence+" online", presence+" offline", presence+" online")
 }
@@ -98,6 +106,7 @@ func TestPresenceIsMadeForEachConnection(t *testing.T) {
 	})
 	ready(t, s)
 	h.eventually(t, presence+" on 0000")
+	acknowledged(t, s)
 	clock.Store(7)
 	s.link.Load().end(errLeft)
 	h.eventually(t, presence+" on 0000", presence+" off 0000", presence+" on 0007")
