@@ -94,16 +94,21 @@ func (g *Guard) URL(at net.Addr) string {
 // nothing that stands within the page.
 const policy = "default-src 'none'; script-src 'self'; style-src 'self'; img-src 'self'; connect-src 'self'; form-action 'self'; base-uri 'none'; frame-ancestors 'none'"
 
+// Bounds are the headers that each answer has, by which a browser keeps a page within them.
+func Bounds() map[string]string {
+	return map[string]string{
+		"Content-Security-Policy":      policy,
+		"X-Content-Type-Options":       "nosniff",
+		"Referrer-Policy":              "no-referrer",
+		"Cross-Origin-Resource-Policy": "same-origin",
+		"Cross-Origin-Opener-Policy":   "same-origin",
+	}
+}
+
 // front stands before everything that everybody may ask, passwords included.
 func (g *Guard) front(h http.Handler) http.Handler {
 	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
-		for name, value := range map[string]string{
-			"Content-Security-Policy":      policy,
-			"X-Content-Type-Options":       "nosniff",
-			"Referrer-Policy":              "no-referrer",
-			"Cross-Origin-Resource-Policy": "same-origin",
-			"Cross-Origin-Opener-Policy":   "same-origin",
-		} {
+		for name, value := range Bounds() {
 			w.Header().Set(name, value)
 		}
 		switch {

@@ -101,7 +101,8 @@ func TestSparkplug(t *testing.T) {
 	}
 }
 
-// Whatever the word, it is no code, or has a mark that is known and no better than the word.
+// Whatever the word, it is no code, or has a mark that is known and of the word's severity; the one
+// good word that doubts is held by a test of its own.
 func FuzzNames(f *testing.F) {
 	for name := range statusNames {
 		f.Add([]byte(name))
@@ -110,7 +111,7 @@ func FuzzNames(f *testing.F) {
 		f.Add([]byte(name))
 	}
 	f.Fuzz(func(t *testing.T, name []byte) {
-		if m, ok := OPCUAName(name); ok && (words[m] == "" || len(name) < 3 || m.Quality() < severityOf(name[0])) {
+		if m, ok := OPCUAName(name); ok && (words[m] == "" || len(name) < 3 || m.Quality() != severityOf(name[0]) && string(name) != "GoodLocalOverride") {
 			t.Errorf("%q is %v", name, m)
 		}
 		if m, ok := NE107(name); ok && words[m] == "" {
@@ -120,9 +121,5 @@ func FuzzNames(f *testing.F) {
 }
 
 func severityOf(first byte) Quality {
-	q, ok := map[byte]Quality{'G': Good, 'U': Uncertain, 'B': Bad}[first]
-	if !ok {
-		return Bad + 1
-	}
-	return q
+	return map[byte]Quality{'G': Good, 'U': Uncertain, 'B': Bad}[first]
 }

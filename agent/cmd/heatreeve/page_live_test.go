@@ -12,7 +12,10 @@ import (
 	mqtt "github.com/eclipse/paho.mqtt.golang"
 )
 
-const liveMaxAge = 4 * time.Second
+const (
+	liveMaxAge   = 4 * time.Second
+	liveLateness = time.Second
+)
 
 // liveSite has two loads of which one loses a tag.
 const liveSite = `
@@ -102,6 +105,8 @@ func (b *browser) live(t *testing.T) {
 	x.until("the page is watched", watchCut)
 
 	p.cut.Store(true)
+	x.until("the load whose tag is cut is blind", fmt.Sprintf(verdictOf, "cut")+" === 'blind'")
+	since := time.Since(time.UnixMilli(p.last.Load()))
 	x.until("the page is beyond the age of the last reading", fmt.Sprintf("%s > %d", atOf, p.last.Load()+(liveMaxAge+time.Second).Milliseconds()))
 	if verdict := eval[string](x, fmt.Sprintf(verdictOf, "cut")); verdict != "blind" {
 		t.Errorf("the load whose tag is cut is %s", verdict)
@@ -111,7 +116,10 @@ func (b *browser) live(t *testing.T) {
 	if over := time.Duration(eval[int64](x, "window.lastShown")-p.last.Load()) * time.Millisecond; over > liveMaxAge {
 		t.Errorf("the page shows a duty %v after the last reading of a tag, of which the age is %v", over, liveMaxAge)
 	}
-	t.Logf("blind %v after the last reading, with an age of %v", time.Since(time.UnixMilli(p.last.Load())).Round(time.Millisecond), liveMaxAge)
+	if longest := liveMaxAge + liveLateness + 7*time.Second; since > longest {
+		t.Errorf("the page calls the load blind after %v, want at most %v", since, longest)
+	}
+	t.Logf("blind %v after the last reading, with an age of %v", since.Round(time.Millisecond), liveMaxAge)
 	x.until("a load without a figure says why", `document.querySelector('[data-load="cut"] .note').textContent.includes("TT-2")`)
 	x.until("the other load is measured", fmt.Sprintf(dutyOf, "whole")+" !== '–'")
 
